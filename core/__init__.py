@@ -1,0 +1,1 @@
+"""Computation only: no Qt, no SQL, no files, no clock. What a function needs is passed in."""

@@ -1,0 +1,1 @@
+"""What is logged: channels, entries, instants, and the episode they make."""
