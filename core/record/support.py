@@ -1,0 +1,136 @@
+"""When support ran: its start and end, breaks from it, hours on the mask."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from core.record.channels import MODES
+from core.record.episode import Episode
+from core.record.instant import DAY, HOUR, Instant
+from core.record.settings import SettingsInForce
+
+SUPPORT_MODES = frozenset(MODES) - {"off"}
+_ENDING_EVENTS = ("stopped", "intubated", "arrest")
+
+
+@dataclass(frozen=True, slots=True)
+class Break:
+    """A time off the mask, from `start` to `end`; `end` is None while it is open."""
+
+    start: Instant
+    end: Instant | None
+
+    def covers(self, at: Instant) -> bool:
+        """Whether a moment lies in the break."""
+        return self.start <= at and (self.end is None or at < self.end)
+
+    def minutes(self, until: Instant) -> float:
+        """Its length so far, in minutes."""
+        return (min(self.end if self.end is not None else until, until) - self.start) / 60_000_000
+
+
+@dataclass(frozen=True, slots=True)
+class SupportTime:
+    """The support of an episode.
+
+    `start` is None before any support; `start_recorded` is False where logging began with support running
+    and nobody said since when. `end` is None while it goes on; `ended_by` is the event or `ended_at`.
+    """
+
+    start: Instant | None
+    start_recorded: bool
+    end: Instant | None
+    ended_by: str | None
+    breaks: tuple[Break, ...]
+
+    def on_support(self, at: Instant) -> bool:
+        """Whether support was running on the patient at a moment."""
+        if self.start is None or at < self.start or (self.end is not None and at >= self.end):
+            return False
+        return not any(b.covers(at) for b in self.breaks)
+
+    def break_at(self, at: Instant) -> Break | None:
+        """The break a moment lies in."""
+        return next((b for b in self.breaks if b.covers(at)), None)
+
+    def hours_on_mask(self, start: Instant, end: Instant) -> float:
+        """Hours of support between two moments, breaks taken off."""
+        if self.start is None:
+            return 0.0
+        low = max(start, self.start)
+        high = min(end, self.end) if self.end is not None else end
+        if high <= low:
+            return 0.0
+        off = sum(
+            max(0, min(b.end if b.end is not None else high, high) - max(b.start, low)) for b in self.breaks
+        )
+        return (high - low - off) / HOUR
+
+    def hours_last_day(self, as_of: Instant) -> float:
+        """Hours of support in the last 24 h."""
+        return self.hours_on_mask(as_of - DAY, as_of)
+
+
+def support_time(episode: Episode, settings: SettingsInForce) -> SupportTime:
+    """Find start, end and breaks of support.
+
+    The start is the profile's `started_at`; without one, the first moment a support mode, a pressure or
+    `mask_on` is logged. A stop followed by settings or the mask again is a break of the same episode.
+    """
+    first = _first_support(episode, settings)
+    stated = episode.latest("started_at")
+    start = int(stated) if stated is not None else first
+    end, ended_by = _end(episode, settings)
+    return SupportTime(start, stated is not None or _began_after_first_entry(episode, first), end, ended_by,
+                       _breaks(episode, settings, end))  # fmt: skip
+
+
+def _first_support(episode: Episode, settings: SettingsInForce) -> Instant | None:
+    for t in settings.moments:
+        now = settings.at(t)
+        if now.mode in SUPPORT_MODES or now.is_bilevel or now.is_cpap:
+            return t
+    on = episode.text("mask_on")
+    return int(on.t[0]) if len(on) else None
+
+
+def _began_after_first_entry(episode: Episode, first: Instant | None) -> bool:
+    """Support seen to begin: something was logged before it, so its first setting is its start."""
+    logged = episode.first_at
+    return first is not None and logged is not None and logged < first
+
+
+def _end(episode: Episode, settings: SettingsInForce) -> tuple[Instant | None, str | None]:
+    stated = episode.latest("ended_at")
+    ends = [(int(stated), "ended_at")] if stated is not None else []
+    ends += [(int(episode.text(e).t[-1]), e) for e in _ENDING_EVENTS if len(episode.text(e))]
+    if not ends:
+        return None, None
+    end, by = max(ends)
+    on = episode.text("mask_on")
+    resumed = any(t > end for t in settings.moments if not settings.at(t).is_off)
+    resumed = resumed or bool(len(on) and on.t[-1] > end)
+    return (None, None) if resumed and by != "ended_at" else (end, by)
+
+
+def _breaks(episode: Episode, settings: SettingsInForce, end: Instant | None) -> tuple[Break, ...]:
+    """Pair every going-off with the next coming-on. Off while off changes nothing."""
+    moves: list[tuple[Instant, bool]] = []
+    for channel, off in (("break_start", True), ("mask_off", True), ("stopped", True),
+                         ("break_end", False), ("mask_on", False)):  # fmt: skip
+        moves += [(int(t), off) for t in episode.text(channel).t]
+    mode = episode.text("mode")
+    moves += [(int(t), v == "off") for t, v in zip(mode.t, mode.v, strict=True)]
+    breaks: list[Break] = []
+    opened: Instant | None = None
+    for at, off in sorted(moves):
+        if end is not None and at >= end:
+            break
+        if off and opened is None:
+            opened = at
+        elif not off and opened is not None:
+            breaks.append(Break(opened, at))
+            opened = None
+    if opened is not None:
+        breaks.append(Break(opened, end))
+    return tuple(breaks)
