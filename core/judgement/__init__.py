@@ -1,0 +1,1 @@
+"""Judgement: anchors and responses, trends, scores, the policy, markers, due items, levers."""

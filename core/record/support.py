@@ -82,7 +82,7 @@ def support_time(episode: Episode, settings: SettingsInForce) -> SupportTime:
     start = int(stated) if stated is not None else first
     end, ended_by = _end(episode, settings)
     return SupportTime(start, stated is not None or _began_after_first_entry(episode, first), end, ended_by,
-                       _breaks(episode, settings, end))  # fmt: skip
+                       _breaks(episode, end))  # fmt: skip
 
 
 def _first_support(episode: Episode, settings: SettingsInForce) -> Instant | None:
@@ -113,14 +113,21 @@ def _end(episode: Episode, settings: SettingsInForce) -> tuple[Instant | None, s
     return (None, None) if resumed and by != "ended_at" else (end, by)
 
 
-def _breaks(episode: Episode, settings: SettingsInForce, end: Instant | None) -> tuple[Break, ...]:
+def _mode_moves(episode: Episode) -> list[tuple[Instant, bool]]:
+    """Switching off is going off; only a mode after `off` is coming on (one logged in a break is a plan)."""
+    mode = episode.text("mode")
+    before = (None, *mode.v)
+    return [(int(t), v == "off") for t, v, was in zip(mode.t, mode.v, before, strict=False)
+            if (v == "off") != (was == "off")]  # fmt: skip
+
+
+def _breaks(episode: Episode, end: Instant | None) -> tuple[Break, ...]:
     """Pair every going-off with the next coming-on. Off while off changes nothing."""
     moves: list[tuple[Instant, bool]] = []
     for channel, off in (("break_start", True), ("mask_off", True), ("stopped", True),
                          ("break_end", False), ("mask_on", False)):  # fmt: skip
         moves += [(int(t), off) for t in episode.text(channel).t]
-    mode = episode.text("mode")
-    moves += [(int(t), v == "off") for t, v in zip(mode.t, mode.v, strict=True)]
+    moves += _mode_moves(episode)
     breaks: list[Break] = []
     opened: Instant | None = None
     for at, off in sorted(moves):

@@ -1,0 +1,327 @@
+"""Figures: what is computed for one episode as of one moment. Views and commands draw these and add nothing.
+
+Names carry units and are the JSON keys. Instants are int64 microseconds UTC. None means absent; `reasons`
+beside it says why, by field name. NaN never leaves core: it becomes None with a reason.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from core.record.instant import Instant
+from core.record.message import Message
+
+Reasons = Mapping[str, Message]
+NO_REASONS: Reasons = {}
+
+
+@dataclass(frozen=True, slots=True)
+class SupportFigure:
+    """Settings in force and time on the mask."""
+
+    mode: str | None = None
+    ipap_cmH2O: float | None = None
+    epap_cmH2O: float | None = None
+    pressure_support_cmH2O: float | None = None
+    fio2: float | None = None
+    o2_flow_L_per_min: float | None = None
+    rate_set_per_min: float | None = None
+    ti_s: float | None = None
+    interface: str | None = None
+    since: Instant | None = None
+    """Support started."""
+    ended_at: Instant | None = None
+    end_reason: str | None = None
+    last_change_at: Instant | None = None
+    hours_on_mask: float | None = None
+    hours_on_mask_last_24h: float | None = None
+    on_mask: bool = False
+    break_since: Instant | None = None
+    reasons: Reasons = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class GasFigure:
+    """One blood gas with what is computed from it. `ph_text` keeps the precision as typed."""
+
+    at: Instant
+    site: str
+    site_assumed: bool = False
+    ph: float | None = None
+    ph_text: str | None = None
+    paco2_mmHg: float | None = None
+    paco2_text: str | None = None
+    """As typed, with its unit, e.g. "8.3 kPa"."""
+    pao2_mmHg: float | None = None
+    hco3_mmol_L: float | None = None
+    hco3_calculated_mmol_L: float | None = None
+    sbe_mmol_L: float | None = None
+    be_mmol_L: float | None = None
+    lactate_mmol_L: float | None = None
+    fio2: float | None = None
+    fio2_from: str | None = None
+    """"gas", "setting" or "room air off support"."""
+    pf_mmHg: float | None = None
+    aa_gradient_mmHg: float | None = None
+    consistent: bool | None = None
+    """Reported actual bicarbonate agrees with pH and PCO2 within 2 mmol/L; None where not checkable."""
+    state: str | None = None
+    """"severe", "acidotic" or "resolved"; None where pH or site do not allow it."""
+    hypercapnic: bool | None = None
+    off_support: bool = False
+    doubt: bool = False
+    corrected: bool = False
+    disputed: bool = False
+    reasons: Reasons = field(default_factory=dict)
+    warnings: tuple[Message, ...] = ()
+    ids: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Step:
+    """One change inside an anchor. `before`/`after` in canonical units or words."""
+
+    at: Instant
+    channel: str
+    before: float | str | None
+    after: float | str | None
+
+
+@dataclass(frozen=True, slots=True)
+class SinceStart:
+    """A gas against the baseline of the start, so that a slow drift cannot hide."""
+
+    delta_ph: float | None = None
+    delta_paco2_mmHg: float | None = None
+    delta_pf_mmHg: float | None = None
+    verdict: str | None = None
+    gain_lost: bool = False
+    reasons: Reasons = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class JudgedGas:
+    """A gas judged against an anchor.
+
+    `timing`: early (1-29 min), in_window (30-120), late. `verdict`, `co2_arm`, `oxygen_arm`: better, worse,
+    mixed, no clear change, over-correction; None with `why` when not judged. `attributable` is False when a
+    later anchor lies between: `also_changed` says what.
+    """
+
+    at: Instant
+    minutes: float
+    timing: str
+    delta_ph: float | None = None
+    delta_paco2_mmHg: float | None = None
+    delta_pf_mmHg: float | None = None
+    verdict: str | None = None
+    co2_arm: str | None = None
+    oxygen_arm: str | None = None
+    state: str | None = None
+    attributable: bool = True
+    since_start: SinceStart = field(default_factory=SinceStart)
+    also_changed: tuple[Step, ...] = ()
+    why: tuple[Message, ...] = ()
+    """What was compared, by how much, against which noise; or why not judged."""
+
+
+@dataclass(frozen=True, slots=True)
+class CourseValue:
+    """pH and PaCO2 at a fixed minute after an anchor: measured, interpolated or open. Shown, never judged by."""
+
+    ph: float | None = None
+    ph_low: float | None = None
+    ph_high: float | None = None
+    paco2_mmHg: float | None = None
+    paco2_low_mmHg: float | None = None
+    paco2_high_mmHg: float | None = None
+    basis: Message | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class ResponseFigure:
+    """What an anchor did. `headline`: a verdict, "not yet known" or "not judged" (with `why`)."""
+
+    anchor_at: Instant
+    anchor: str
+    """"start", "change", "interface" or "break_end"."""
+    first_at: Instant
+    steps: tuple[Step, ...] = ()
+    effects: tuple[str, ...] = ()
+    """Which of "co2" and "oxygen" it can act on."""
+    window_from: Instant = 0
+    window_to: Instant = 0
+    baseline_at: Instant | None = None
+    baseline_ph: float | None = None
+    baseline_paco2_mmHg: float | None = None
+    baseline_pf_mmHg: float | None = None
+    baseline_early: bool = False
+    co2_arm_active: bool = False
+    oxygen_arm_active: bool = False
+    headline: str = "not yet known"
+    headline_gas_at: Instant | None = None
+    state: str | None = None
+    why: tuple[Message, ...] = ()
+    gases: tuple[JudgedGas, ...] = ()
+    at_minutes: Mapping[str, CourseValue] = field(default_factory=dict)
+    superseded_at: Instant | None = None
+    """The next anchor's first step, where there is one."""
+
+
+@dataclass(frozen=True, slots=True)
+class RatioFigure:
+    """P/F, S/F or ROX: the newest value and its robust slope per hour with interval."""
+
+    latest: float | None = None
+    at: Instant | None = None
+    slope_per_h: float | None = None
+    slope_low: float | None = None
+    slope_high: float | None = None
+    n: int = 0
+    span_from: Instant | None = None
+    caveat: Message | None = None
+    reasons: Reasons = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class LeakFigure:
+    """Leak over the chosen span, on 15-min medians."""
+
+    median_L_per_min: float | None = None
+    slope_L_per_min_per_h: float | None = None
+    slope_low: float | None = None
+    slope_high: float | None = None
+    minutes_over_limit: float | None = None
+    limit_L_per_min: float | None = None
+    definition: str | None = None
+    reasons: Reasons = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class ScoreInput:
+    """One input of a score: its value, when it was, the points it gave (None where missing)."""
+
+    value: float | str | None = None
+    at: Instant | None = None
+    points: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class ScoreFigure:
+    """A score. `points` is None when an input is missing; `lowest`/`highest` bound it then."""
+
+    points: float | None = None
+    lowest: float | None = None
+    highest: float | None = None
+    at: Instant | None = None
+    missing: tuple[str, ...] = ()
+    inputs: Mapping[str, ScoreInput] = field(default_factory=dict)
+    population: str | None = None
+    """"inside" or "outside" the population it was validated in."""
+    enabled: bool = True
+    caveat: Message | None = None
+    reasons: Reasons = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class FlagFigure:
+    """A marker that is or was met. `state`: raised, seen, settled, no longer met."""
+
+    flag_id: str
+    marker: str
+    group: str
+    tier: str
+    since: Instant
+    evidence: tuple[Message, ...]
+    source: str
+    sure: str
+    policy: str
+    ended_at: Instant | None = None
+    state: str = "raised"
+    strongest: bool = True
+    """False where a stronger flag of the same group stands: it is shown under that one."""
+    outside_population: bool = False
+    seen_by: str | None = None
+    seen_at: Instant | None = None
+    settled_by: str | None = None
+    settled_at: Instant | None = None
+    settled_why: str | None = None
+    undone_by_correction: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class DueFigure:
+    """Something that should be done by a time. `state`: open, soon, overdue, awaiting result, done."""
+
+    what: str
+    because: Message
+    due_from: Instant
+    due_until: Instant
+    state: str
+    done_by: str | None = None
+    done_at: Instant | None = None
+    anchor_at: Instant | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class LeverFigure:
+    """Something a qualified person might change: why, the present value, what limits it."""
+
+    key: str
+    can_act: bool
+    why: tuple[Message, ...] = ()
+    present: Message | None = None
+    limits: tuple[Message, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class ExpectedCO2:
+    """PaCO2 to expect after the latest anchor from the ventilation delivered, against what was observed."""
+
+    t: tuple[Instant, ...] = ()
+    expected_mmHg: tuple[float, ...] = ()
+    low_mmHg: tuple[float, ...] = ()
+    high_mmHg: tuple[float, ...] = ()
+    observed_at: Instant | None = None
+    observed_minus_expected_mmHg: float | None = None
+    explanations: tuple[Message, ...] = ()
+    assumptions: tuple[Message, ...] = ()
+    reasons: Reasons = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class Concern:
+    """Why an episode is sorted where it is: `rank` 0 is seen first among equals by `order`."""
+
+    rank: int
+    """0 escalate, 1 concern, 2 overdue, 3 remark, 4 due soon, 5 quiet, 6 ended."""
+    order: float = 0.0
+    why: Message | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class EpisodeFigures:
+    """Everything computed for one episode as of one moment."""
+
+    episode: str
+    as_of: Instant
+    label: str = ""
+    zone: str = "UTC"
+    profile: Mapping[str, float | str | None] = field(default_factory=dict)
+    support: SupportFigure = field(default_factory=SupportFigure)
+    responses: tuple[ResponseFigure, ...] = ()
+    gases: tuple[GasFigure, ...] = ()
+    pf: RatioFigure = field(default_factory=RatioFigure)
+    sf: RatioFigure = field(default_factory=RatioFigure)
+    rox: RatioFigure = field(default_factory=RatioFigure)
+    trends: Mapping[str, RatioFigure] = field(default_factory=dict)
+    leak: LeakFigure = field(default_factory=LeakFigure)
+    scores: Mapping[str, ScoreFigure] = field(default_factory=dict)
+    flags: tuple[FlagFigure, ...] = ()
+    due: tuple[DueFigure, ...] = ()
+    levers: tuple[LeverFigure, ...] = ()
+    expected_co2: ExpectedCO2 | None = None
+    concern: Concern = field(default_factory=lambda: Concern(5))
+    warnings: tuple[Message, ...] = ()
+    policy_hash: str = ""

@@ -1,0 +1,145 @@
+"""The sections of a policy, as types. A number that judges is a `Limit` and names its source."""
+
+from __future__ import annotations
+
+from typing import Literal
+
+import msgspec
+
+Sure = Literal["confirmed", "secondary", "from memory", "computed here", "common practice"]
+Tier = Literal["remark", "concern", "escalate"]
+
+
+class Limit(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
+    """One number of the policy. `kpa` is the printed kPa form of a pressure given in mmHg."""
+
+    value: float
+    source: str
+    sure: Sure
+    kpa: float | None = None
+
+
+class _Section(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=True):
+    pass
+
+
+class ResponseRules(_Section):
+    """When a gas judges an anchor. Minutes unless the name says otherwise."""
+
+    window_from_min: Limit
+    window_to_min: Limit
+    chain_gap_min: Limit
+    chain_span_min: Limit
+    undone_within_min: Limit
+    baseline_age_start_h: Limit
+    baseline_age_change_h: Limit
+    break_is_anchor_min: Limit
+    off_support_after_break_min: Limit
+    one_hour_from_min: Limit
+    one_hour_to_min: Limit
+    one_to_two_hours_from_min: Limit
+    one_to_two_hours_to_min: Limit
+    restart_within_h: Limit
+
+
+class Noise(_Section):
+    """Changes between two values that measurement alone can make, 95 %."""
+
+    ph: Limit
+    paco2_mmHg: Limit
+    paco2_fraction: Limit
+    pao2_fraction: Limit
+    rr_counted: Limit
+    rr_device: Limit
+    spo2: Limit
+
+
+class StateRules(_Section):
+    """States of a gas and the two kinds of failure."""
+
+    severe_below_ph: Limit
+    acidotic_below_ph: Limit
+    alkalotic_above_ph: Limit
+    hypercapnia_mmHg: Limit
+    hypoxaemia_pf_mmHg: Limit
+    consistent_within_mmol_L: Limit
+
+
+class OxygenRules(_Section):
+    """Targets, and when oxygen figures are known."""
+
+    target_low: Limit
+    target_high: Limit
+    risk_target_low: Limit
+    risk_target_high: Limit
+    no_sf_above_spo2: Limit
+    fio2_same_within: Limit
+    steady_fio2_min: Limit
+
+
+class Freshness(_Section):
+    """How old an input of a score may be, in minutes from the score's moment."""
+
+    vitals_min: Limit
+    gcs_min: Limit
+    gas_min: Limit
+
+
+class TrendRules(_Section):
+    """Spans for robust slopes."""
+
+    span_h: Limit
+    device_median_min: Limit
+    few_points: Limit
+    confidence: Limit
+
+
+class LeakRules(_Section):
+    """Leak limits by its definition. A total leak's limit adds the port's own leak at the mean pressure."""
+
+    unintentional_limit_L_per_min: Limit
+    act_limit_L_per_min: Limit
+    port_L_per_min_per_sqrt_cmH2O: Limit
+    over_minutes: Limit
+    of_minutes: Limit
+    device_ceiling_L_per_min: Limit
+    no_breath_min: Limit
+    doubt_tidal_volume_above_L_per_min: Limit
+
+
+class ScoreRules(_Section):
+    """Which scores are on."""
+
+    hacor_updated: bool
+
+
+class Levers(_Section):
+    """Limits of settings that a qualified person reviews before going past."""
+
+    review_ipap_cmH2O: Limit
+    review_epap_cmH2O: Limit
+    vt_ml_per_kg: Limit
+
+
+class MarkerRule(_Section):
+    """One marker: whether it is on, how strong, in which group, whom it was validated in, and its numbers."""
+
+    on: bool = True
+    tier: Tier
+    group: str
+    population: str
+    source: str
+    sure: Sure
+    limits: dict[str, float] = {}
+
+
+class DueRule(_Section):
+    """One due item: from and until in minutes after what brings it, and when it counts as soon."""
+
+    on: bool = True
+    from_min: float
+    until_min: float
+    soon_min: float = 15.0
+    source: str
+    sure: Sure
+    limits: dict[str, float] = {}
