@@ -53,8 +53,8 @@ def read_policy(text: str) -> Policy:
     """Read a policy's TOML text.
 
     Raises:
-        RecordError: `policy.unreadable` (not TOML) or `policy.invalid` (unknown key, wrong type, missing value),
-            with the parser's words.
+        RecordError: `policy.unreadable` (not TOML) or `policy.invalid` (unknown key, wrong type, missing
+            value), with the parser's words.
     """
     try:
         tables: dict[str, Any] = tomllib.loads(text)

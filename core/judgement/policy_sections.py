@@ -23,7 +23,7 @@ class _Section(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=
     pass
 
 
-class ResponseRules(_Section):
+class ResponseRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """When a gas judges an anchor. Minutes unless the name says otherwise."""
 
     window_from_min: Limit
@@ -42,7 +42,7 @@ class ResponseRules(_Section):
     restart_within_h: Limit
 
 
-class Noise(_Section):
+class Noise(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """Changes between two values that measurement alone can make, 95 %."""
 
     ph: Limit
@@ -54,7 +54,7 @@ class Noise(_Section):
     spo2: Limit
 
 
-class StateRules(_Section):
+class StateRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """States of a gas and the two kinds of failure."""
 
     severe_below_ph: Limit
@@ -65,7 +65,7 @@ class StateRules(_Section):
     consistent_within_mmol_L: Limit
 
 
-class OxygenRules(_Section):
+class OxygenRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """Targets, and when oxygen figures are known."""
 
     target_low: Limit
@@ -77,7 +77,7 @@ class OxygenRules(_Section):
     steady_fio2_min: Limit
 
 
-class Freshness(_Section):
+class Freshness(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """How old an input of a score may be, in minutes from the score's moment."""
 
     vitals_min: Limit
@@ -85,7 +85,7 @@ class Freshness(_Section):
     gas_min: Limit
 
 
-class TrendRules(_Section):
+class TrendRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """Spans for robust slopes."""
 
     span_h: Limit
@@ -94,7 +94,7 @@ class TrendRules(_Section):
     confidence: Limit
 
 
-class LeakRules(_Section):
+class LeakRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """Leak limits by its definition. A total leak's limit adds the port's own leak at the mean pressure."""
 
     unintentional_limit_L_per_min: Limit
@@ -107,13 +107,13 @@ class LeakRules(_Section):
     doubt_tidal_volume_above_L_per_min: Limit
 
 
-class ScoreRules(_Section):
+class ScoreRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """Which scores are on."""
 
     hacor_updated: bool
 
 
-class Levers(_Section):
+class Levers(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """Limits of settings that a qualified person reviews before going past."""
 
     review_ipap_cmH2O: Limit
@@ -121,7 +121,7 @@ class Levers(_Section):
     vt_ml_per_kg: Limit
 
 
-class MarkerRule(_Section):
+class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """One marker: whether it is on, how strong, in which group, whom it was validated in, and its numbers."""
 
     on: bool = True
@@ -133,7 +133,7 @@ class MarkerRule(_Section):
     limits: dict[str, float] = {}
 
 
-class DueRule(_Section):
+class DueRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """One due item: from and until in minutes after what brings it, and when it counts as soon."""
 
     on: bool = True

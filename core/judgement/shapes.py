@@ -1,4 +1,4 @@
-"""Figures: what is computed for one episode as of one moment. Views and commands draw these and add nothing.
+"""Figures, as shapes: what is computed for one episode as of one moment. Views and commands draw these and add nothing.
 
 Names carry units and are the JSON keys. Instants are int64 microseconds UTC. None means absent; `reasons`
 beside it says why, by field name. NaN never leaves core: it becomes None with a reason.
@@ -128,7 +128,7 @@ class JudgedGas:
 
 @dataclass(frozen=True, slots=True)
 class CourseValue:
-    """pH and PaCO2 at a fixed minute after an anchor: measured, interpolated or open. Shown, never judged by."""
+    """pH and PaCO2 at a fixed minute after an anchor, with its basis. Shown, never judged by."""
 
     ph: float | None = None
     ph_low: float | None = None
