@@ -1,0 +1,133 @@
+"""The style sheet of widgets: soft raised cards, one-pixel lines, generous targets, focus always visible.
+
+A widget asks for a look by a dynamic property: `card` on a frame, `role` on a label or a button
+(title, emphasis, quiet, caption; primary, plain). Properties and not class names, so that one look
+serves many widgets.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from app.theme import Theme
+
+_SHEET = """
+* {{ color: {ink}; }}
+QMainWindow, QDialog, QMessageBox {{ background: {ground}; }}
+QToolTip {{ background: {ink}; color: {raised}; border: 0; padding: {g2}px {g3}px; }}
+QFrame[card="true"] {{ background: {raised}; border: 1px solid {line}; border-radius: {radius}px; }}
+QLabel {{ background: transparent; border: 0; }}
+QLabel[role="display"] {{ font-size: {display}px; font-weight: 600; }}
+QLabel[role="title"] {{ font-size: {title}px; font-weight: 600; }}
+QLabel[role="emphasis"] {{ font-size: {emphasis}px; font-weight: 600; }}
+QLabel[role="quiet"] {{ color: {ink_quiet}; }}
+QLabel[role="caption"] {{ color: {ink_quiet}; font-size: {caption}px; }}
+
+QPushButton, QToolButton {{
+    background: {raised}; border: 1px solid {edge}; border-radius: {radius}px;
+    padding: {g2}px {g4}px; min-height: {target}px;
+}}
+QPushButton:hover, QToolButton:hover {{ background: {wash}; }}
+QPushButton:pressed, QToolButton:pressed, QPushButton:checked, QToolButton:checked {{
+    background: {wash}; border-color: {accent};
+}}
+QPushButton:focus, QToolButton:focus {{ border: 2px solid {accent}; padding: {g2_1}px {g4_1}px; }}
+QPushButton:disabled, QToolButton:disabled {{ color: {edge}; border-color: {line}; }}
+QPushButton[role="primary"] {{ background: {accent}; color: {on_accent}; border-color: {accent}; }}
+QPushButton[role="primary"]:hover {{ background: {support_edge}; }}
+QPushButton[role="primary"]:focus {{ border: 2px solid {ink}; }}
+QPushButton[role="primary"]:disabled {{ background: {sunken}; color: {ink_quiet}; border-color: {line}; }}
+QPushButton[role="plain"], QToolButton[role="plain"] {{ border-color: transparent; background: transparent; }}
+QPushButton[role="plain"]:hover, QToolButton[role="plain"]:hover {{ background: {wash}; }}
+QPushButton[role="plain"]:focus, QToolButton[role="plain"]:focus {{ border: 2px solid {accent}; }}
+
+QLineEdit, QPlainTextEdit, QTextEdit, QSpinBox, QDoubleSpinBox, QComboBox, QDateTimeEdit {{
+    background: {raised}; border: 1px solid {edge}; border-radius: {radius}px;
+    padding: {g1}px {g3}px; min-height: {target}px;
+    selection-background-color: {accent}; selection-color: {on_accent};
+}}
+QLineEdit:focus, QPlainTextEdit:focus, QTextEdit:focus, QSpinBox:focus, QDoubleSpinBox:focus,
+QComboBox:focus, QDateTimeEdit:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
+QLineEdit:disabled, QSpinBox:disabled, QDoubleSpinBox:disabled, QComboBox:disabled {{
+    background: {sunken}; color: {ink_quiet}; border-color: {line};
+}}
+QComboBox::drop-down {{ border: 0; width: {g6}px; }}
+QComboBox QAbstractItemView {{ background: {raised}; border: 1px solid {line}; outline: 0; }}
+
+QCheckBox, QRadioButton {{ spacing: {g2}px; min-height: {target}px; background: transparent; }}
+QCheckBox:focus, QRadioButton:focus {{ border: 2px solid {accent}; border-radius: {g1}px; }}
+
+QListView, QTreeView, QTableView {{
+    background: {raised}; alternate-background-color: {sunken}; border: 1px solid {line};
+    border-radius: {radius}px; gridline-color: {line}; outline: 0;
+    selection-background-color: {wash}; selection-color: {ink};
+}}
+QListView:focus, QTreeView:focus, QTableView:focus {{ border: 2px solid {accent}; }}
+QListView::item, QTreeView::item {{ padding: {g2}px; min-height: {target}px; }}
+QTableView::item {{ padding: {g1}px {g2}px; }}
+QListView::item:selected, QTreeView::item:selected, QTableView::item:selected {{
+    background: {wash}; color: {ink};
+}}
+QHeaderView {{ background: {raised}; }}
+QHeaderView::section {{
+    background: {raised}; color: {ink_quiet}; border: 0; border-bottom: 1px solid {line};
+    padding: {g2}px; font-size: {caption}px;
+}}
+QTableCornerButton::section {{ background: {raised}; border: 0; }}
+
+QMenuBar {{ background: {ground}; border-bottom: 1px solid {line}; }}
+QMenuBar::item {{ padding: {g2}px {g3}px; background: transparent; }}
+QMenuBar::item:selected {{ background: {wash}; }}
+QMenu {{ background: {raised}; border: 1px solid {line}; padding: {g1}px; }}
+QMenu::item {{ padding: {g2}px {g6}px {g2}px {g4}px; border-radius: {g1}px; }}
+QMenu::item:selected {{ background: {wash}; }}
+QMenu::item:disabled {{ color: {edge}; }}
+QMenu::separator {{ height: 1px; background: {line}; margin: {g1}px {g2}px; }}
+
+QTabBar::tab {{
+    background: transparent; color: {ink_quiet}; border: 0; border-bottom: 2px solid transparent;
+    padding: {g2}px {g4}px; min-height: {target}px;
+}}
+QTabBar::tab:selected {{ color: {ink}; border-bottom: 2px solid {accent}; font-weight: 600; }}
+QTabBar::tab:hover {{ background: {wash}; }}
+QTabBar:focus {{ border: 2px solid {accent}; border-radius: {g1}px; }}
+QTabWidget::pane {{ border: 0; }}
+
+QGroupBox {{ border: 1px solid {line}; border-radius: {radius}px; margin-top: {g5}px; padding: {g3}px; }}
+QGroupBox::title {{ subcontrol-origin: margin; left: {g3}px; color: {ink_quiet}; }}
+QStatusBar {{ background: {ground}; border-top: 1px solid {line}; color: {ink_quiet}; }}
+QStatusBar::item {{ border: 0; }}
+QSplitter::handle {{ background: {line}; }}
+QSplitter::handle:horizontal {{ width: 1px; }}
+QSplitter::handle:vertical {{ height: 1px; }}
+QProgressBar {{
+    background: {sunken}; border: 1px solid {line}; border-radius: {g1}px; height: {g2}px; text-align: center;
+}}
+QProgressBar::chunk {{ background: {accent}; border-radius: {g1}px; }}
+
+QScrollArea {{ border: 0; background: transparent; }}
+QScrollBar {{ background: transparent; border: 0; margin: 0; }}
+QScrollBar:vertical {{ width: {g3}px; }}
+QScrollBar:horizontal {{ height: {g3}px; }}
+QScrollBar::handle {{ background: {edge}; border-radius: {bar}px; margin: 3px; }}
+QScrollBar::handle:vertical {{ min-height: {g8}px; }}
+QScrollBar::handle:horizontal {{ min-width: {g8}px; }}
+QScrollBar::handle:hover {{ background: {ink_quiet}; }}
+QScrollBar::add-line, QScrollBar::sub-line {{ width: 0; height: 0; }}
+QScrollBar::add-page, QScrollBar::sub-page {{ background: transparent; }}
+"""
+
+
+def sheet(theme: Theme) -> str:
+    """The style sheet with the theme's colours, and sizes at its text scale."""
+    c, t = theme.colours, theme.type
+    distances = {f"g{n}": theme.px(4 * n) for n in range(1, 9)}
+    # Focus thickens a border by one pixel: the padding gives it back, so that nothing jumps.
+    inner = {f"g{n}_1": max(distances[f"g{n}"] - 1, 0) for n in range(1, 5)}
+    sizes = {name: theme.px(getattr(t, name)) for name in ("caption", "body", "emphasis", "title", "display")}
+    names = (
+        "ground raised sunken ink ink_quiet line edge accent on_accent wash support_edge"
+    ).split()
+    colours = {name: getattr(c, name) for name in names}
+    return _SHEET.format(radius=8, bar=3, target=theme.px(24), **distances, **inner, **sizes, **colours)
