@@ -1,7 +1,7 @@
 """What judgement works on: the record cut at a moment, and what the earlier stages found in it.
 
-Stages fill it in order: record (episode, settings, support), gases, responses, trends and scores; then markers
-and due items read it whole. Each stage makes a new context; none changes one.
+Stages fill it in order: record (episode, settings, support), gases, responses, trends and scores; then
+markers and due items read it whole. Each stage makes a new context; none changes one.
 """
 
 from __future__ import annotations

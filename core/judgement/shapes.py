@@ -1,4 +1,4 @@
-"""Figures, as shapes: what is computed for one episode as of one moment. Views and commands draw these and add nothing.
+"""Figures, as shapes: what is computed for an episode as of a moment. Views and commands add nothing.
 
 Names carry units and are the JSON keys. Instants are int64 microseconds UTC. None means absent; `reasons`
 beside it says why, by field name. NaN never leaves core: it becomes None with a reason.
