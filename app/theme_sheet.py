@@ -118,6 +118,9 @@ QScrollBar::add-line, QScrollBar::sub-line {{ width: 0; height: 0; }}
 QScrollBar::add-page, QScrollBar::sub-page {{ background: transparent; }}
 """
 
+_SURFACES = ("ground", "raised", "sunken", "line", "edge", "wash")
+_INKS = ("ink", "ink_quiet", "accent", "on_accent", "support_edge")
+
 
 def sheet(theme: Theme) -> str:
     """The style sheet with the theme's colours, and sizes at its text scale."""
@@ -126,8 +129,5 @@ def sheet(theme: Theme) -> str:
     # Focus thickens a border by one pixel: the padding gives it back, so that nothing jumps.
     inner = {f"g{n}_1": max(distances[f"g{n}"] - 1, 0) for n in range(1, 5)}
     sizes = {name: theme.px(getattr(t, name)) for name in ("caption", "body", "emphasis", "title", "display")}
-    names = (
-        "ground raised sunken ink ink_quiet line edge accent on_accent wash support_edge"
-    ).split()
-    colours = {name: getattr(c, name) for name in names}
+    colours = {name: getattr(c, name) for name in _SURFACES + _INKS}
     return _SHEET.format(radius=8, bar=3, target=theme.px(24), **distances, **inner, **sizes, **colours)

@@ -2,9 +2,9 @@
 
 Importing this package costs nothing; import the module you draw with.
 
-    app.chart.shapes        what to draw: frozen dataclasses, no Qt
+    app.chart.shapes        what to draw: frozen dataclasses
     app.chart.lanes         WardLanes(theme): the ward view; set_spec(LanesSpec)
-    app.chart.stack         PanelStack(theme): ribbon and panels of one episode on one clock; set_spec(StackSpec)
+    app.chart.stack         PanelStack(theme): ribbon and panels on one clock; set_spec(StackSpec)
     app.chart.acid_base_map AcidBaseMap(theme): pH against PaCO2; set_spec(MapSpec)
     app.chart.render        pictures without a screen: image_of, svg_of, pdf_of
     app.chart.time_ticks    labels of a clock in local wall time

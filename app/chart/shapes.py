@@ -1,4 +1,4 @@
-"""What to draw: frozen dataclasses with ready arrays and ready words. No Qt, no pyqtgraph.
+"""What to draw: frozen dataclasses with ready arrays and ready words.
 
 Every instant is int64 microseconds UTC. Every word is already in the reader's language. `payload` is
 handed back untouched when the reader picks the thing.
@@ -143,7 +143,7 @@ class PanelSpec:
     def __post_init__(self) -> None:
         units = [scale.unit for scale in self.scales]
         if not 1 <= len(units) <= 2 or len(set(units)) != len(units):
-            raise ValueError(f"panel {self.title!r} has scales {units}: one or two different units are accepted")
+            raise ValueError(f"panel {self.title!r} has scales {units}: one or two units are accepted")
         for scale in self.scales:
             if not scale.low < scale.high:
                 raise ValueError(f"scale {scale.unit}: low {scale.low:g} must lie below high {scale.high:g}")
