@@ -1,0 +1,74 @@
+"""Wall-clock times as people type them, made into instants. A clock change is asked about, never guessed."""
+
+from __future__ import annotations
+
+from datetime import UTC, date, datetime, time, timedelta
+from zoneinfo import ZoneInfo
+
+from core.record.instant import MINUTE, Instant, from_datetime, to_datetime
+from core.record.message import refuse
+
+LEAD = 5 * MINUTE
+"""A typed time may lead the clock by this much: clocks on a ward differ."""
+
+
+def local(at: Instant, zone: str) -> datetime:
+    """The instant on the wall clock of a zone."""
+    return to_datetime(at).astimezone(ZoneInfo(zone))
+
+
+def zoned_iso(at: Instant, zone: str) -> str:
+    """The instant as ISO 8601 with the zone's offset of that moment.
+
+    >>> zoned_iso(0, "Europe/London")
+    '1970-01-01T01:00:00+01:00'
+    """
+    return local(at, zone).isoformat()
+
+
+def candidates(day: date, wall: time, zone: str) -> tuple[Instant, ...]:
+    """The instants that show `wall` on `day`: none in the skipped hour, two in the repeated one."""
+    found = []
+    for fold in (0, 1):
+        moment = datetime.combine(day, wall, ZoneInfo(zone)).replace(fold=fold)
+        instant = from_datetime(moment.astimezone(UTC))
+        if local(instant, zone).replace(tzinfo=None) == datetime.combine(day, wall) and instant not in found:
+            found.append(instant)
+    return tuple(found)
+
+
+def latest_wall_time(hour: int, minute: int, *, now: Instant, zone: str, which: str = "") -> Instant:
+    """The newest moment at or before now (5 min of lead allowed) at which the wall clock showed the time.
+
+    So `23:50` typed at 00:10 is yesterday's. `which` is "first" or "second" for an hour that came twice.
+
+    Raises:
+        RecordError: `time.unreadable`; `time.skipped` for a time the clock never showed; `time.repeated` for
+            a time that came twice when `which` is not said.
+
+    >>> from core.record.instant import parse, iso
+    >>> iso(latest_wall_time(23, 50, now=parse("2026-03-28T00:10:00+00:00"), zone="UTC"))
+    '2026-03-27T23:50:00+00:00'
+    """
+    shown = f"{hour:02d}:{minute:02d}"
+    if not (0 <= hour <= 23 and 0 <= minute <= 59):
+        raise refuse("time.unreadable", value=shown, accepted="00:00 to 23:59")
+    today = local(now, zone).date()
+    for days_back in (0, 1):
+        day = today - timedelta(days=days_back)
+        if not candidates(day, time(hour, minute), zone):
+            if days_back == 0 and local(now, zone).time() >= time(hour, minute):
+                raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
+            continue
+        past = [t for t in candidates(day, time(hour, minute), zone) if t <= now + LEAD]
+        if past:
+            return _chosen(past, which, shown)
+    raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
+
+
+def _chosen(past: list[Instant], which: str, shown: str) -> Instant:
+    if len(past) == 1:
+        return past[0]
+    if which not in ("first", "second"):
+        raise refuse("time.repeated", value=shown, accepted=f"first {shown} | second {shown}")
+    return past[0] if which == "first" else past[1]

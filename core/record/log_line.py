@@ -1,0 +1,297 @@
+"""One typed line becomes readings at one moment: `14:20 ipap 16 epap 6 fio2 35%`, `16/6 35`, `gas sent`.
+
+The grammar, in order:
+
+    [time] item...
+    time   14:20 | first 01:30 | second 01:30 | 20m ago | 1h ago | now
+    item   16/6 [35]             IPAP / EPAP, then FiO2
+           ps 10                 pressure support: IPAP is EPAP + 10
+           bp 118/64             systolic / diastolic pressure
+           CHANNEL VALUE [UNIT]  a key or short word of the registry
+           MODE                  bpap-st, cpap, off ... alone
+           EVENT                 gas sent, mask off ... alone; note, told, drug and texts take the rest
+
+Nothing is recorded here: the line says what it would record, asks about soft limits, and refuses in words.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from math import isnan
+
+from core.record.channels import CHANNELS, MODES, Channel, Kind
+from core.record.entries import NewEntry, from_reading
+from core.record.instant import HOUR, MINUTE, Instant
+from core.record.local_time import latest_wall_time
+from core.record.message import Message, refuse
+from core.record.reading import Reading, read_value
+from core.record.settings import Settings
+
+EXAMPLE = "16/6 35 | ipap 16 epap 6 fio2 35% | 14:20 rr 28 spo2 91 | gas sent | note ..."
+
+_TIME = re.compile(r"(?:(first|second)\s+)?(\d{1,2}):(\d{2})(?:\s+(first|second)\b)?(?=\s|$)", re.IGNORECASE)
+_AGO = re.compile(r"(\d{1,3})\s*(m|min|h)\s+ago(?=\s|$)", re.IGNORECASE)
+_NUMBER = re.compile(r"[+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+)")
+_VALUE = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))(.*)")
+_PAIR = re.compile(r"(\d+(?:[.,]\d+)?)/(\d+(?:[.,]\d+)?)")
+_MODE_WORDS = {"st": "BPAP-ST", "hfn": "high-flow nasal"} | {m.casefold(): m for m in MODES}
+LONG_AGO = 8 * HOUR
+"""A typed time further back than most of a shift is said aloud before it is recorded."""
+_TAKES_REST = frozenset({"note", "told", "drug", "review", "alarm"})
+
+
+@dataclass(frozen=True, slots=True)
+class LogLine:
+    """What a line would record: readings at one moment, and whether that moment was typed.
+
+    `support_before` and `support_after` are pressure supports in cmH2O (NaN where not known); `questions` are
+    the soft limits to confirm; `notes` say what else the line implies.
+    """
+
+    at: Instant
+    time_typed: bool
+    readings: tuple[Reading, ...]
+    support_before: float
+    support_after: float
+    notes: tuple[Message, ...] = ()
+
+    @property
+    def questions(self) -> tuple[Message, ...]:
+        """Soft limits passed: ask before recording."""
+        return tuple(doubt for r in self.readings for doubt in r.doubts)
+
+    def entries(self, episode: str, *, by: str, zone: str, confirmed: bool) -> tuple[NewEntry, ...]:
+        """The entries to append. Unconfirmed soft limits are marked doubtful."""
+        return tuple(
+            from_reading(episode, self.at, r, by=by, zone=zone, confirmed=confirmed) for r in self.readings
+        )
+
+
+def read_line(
+    text: str, *, now: Instant, zone: str, in_force: Settings | Callable[[Instant], Settings]
+) -> LogLine:
+    """Read one line over the settings in force at its moment (`SettingsInForce.at` serves as `in_force`).
+
+    Raises:
+        RecordError: naming the word that could not be read and what is accepted.
+    """
+    at, rest, typed = _read_time(text.strip(), now, zone)
+    if not rest:
+        raise refuse("line.empty", accepted=EXAMPLE)
+    before = in_force if isinstance(in_force, Settings) else in_force(at)
+    reader = _Items(rest.split(), before)
+    readings = reader.read()
+    if typed and now - at > LONG_AGO:
+        reader.notes.append(Message("line.long_ago", {"hours": (now - at) / HOUR}))
+    after = _after(before, readings)
+    if after.is_bilevel and after.ipap <= after.epap:
+        raise refuse(
+            "settings.ipap_not_above_epap", ipap=after.ipap, epap=after.epap, accepted="IPAP above EPAP"
+        )
+    return LogLine(at, typed, tuple(readings), before.pressure_support, after.pressure_support,
+                   tuple(reader.notes))  # fmt: skip
+
+
+def _read_time(text: str, now: Instant, zone: str) -> tuple[Instant, str, bool]:
+    if match := _TIME.match(text):
+        which = (match[1] or match[4] or "").lower()
+        at = latest_wall_time(int(match[2]), int(match[3]), now=now, zone=zone, which=which)
+        return at, text[match.end() :].strip(), True
+    if match := _AGO.match(text):
+        unit = HOUR if match[2].lower() == "h" else MINUTE
+        return now - int(match[1]) * unit, text[match.end() :].strip(), True
+    head, _, tail = text.partition(" ")
+    return (now, tail.strip(), False) if head.lower() == "now" else (now, text, False)
+
+
+def _after(before: Settings, readings: Sequence[Reading]) -> Settings:
+    """The settings in force once the readings are."""
+    got = {r.channel.key: r.value for r in readings}
+
+    def number(key: str, old: float) -> float:
+        value = got.get(key)
+        return value if isinstance(value, float) else old
+
+    mode = got.get("mode")
+    return Settings(
+        mode if isinstance(mode, str) else before.mode,
+        number("ipap", before.ipap), number("epap", before.epap), number("cpap", before.cpap),
+        number("fio2", before.fio2), number("o2_flow", before.o2_flow),
+        number("rate_set", before.rate_set), number("ti", before.ti), before.interface,
+    )  # fmt: skip
+
+
+def words_of_channels() -> dict[str, Channel]:
+    """Every word that names a channel on the line: keys, keys with spaces, short words."""
+    found: dict[str, Channel] = {}
+    for c in CHANNELS.values():
+        for word in (c.key, c.key.replace("_", " "), *c.short):
+            found.setdefault(word, c)
+    return found
+
+
+_CHANNEL_WORDS = words_of_channels()
+
+
+class _Items:
+    """Reads the items of a line from left to right."""
+
+    def __init__(self, words: list[str], in_force: Settings) -> None:
+        self.words = words
+        self.i = 0
+        self.in_force = in_force
+        self.notes: list[Message] = []
+        self.readings: list[Reading] = []
+        self.support: str | None = None
+
+    def read(self) -> list[Reading]:
+        while self.i < len(self.words):
+            self._item()
+        self._settle_support()
+        self._settle_mode()
+        keys = [r.channel.key for r in self.readings]
+        for key in keys:
+            if keys.count(key) > 1:
+                raise refuse("line.twice", channel=key, accepted="one value of a channel on a line")
+        return self.readings
+
+    def _item(self) -> None:
+        word = self.words[self.i]
+        low = word.casefold()
+        if match := _PAIR.fullmatch(word):
+            self.i += 1
+            self._add("ipap", match[1])
+            self._add("epap", match[2])
+            self._bare_fio2()
+        elif low == "ps":
+            self.support = self._next_number("ps")
+        elif (channel := self._channel()) is not None:
+            self._channel_item(channel)
+        elif low in _MODE_WORDS:
+            self.i += 1
+            self._add("mode", _MODE_WORDS[low])
+        elif _NUMBER.fullmatch(word) and not self.readings:
+            self._bare_numbers()
+        else:
+            raise refuse("line.word_unknown", word=word, accepted=EXAMPLE)
+
+    def _channel(self) -> Channel | None:
+        """The channel named here, two words first; leaves the reader behind the name."""
+        for count in (3, 2, 1):
+            name = " ".join(self.words[self.i : self.i + count]).casefold()
+            channel = _CHANNEL_WORDS.get(name)
+            if channel is not None and self.i + count <= len(self.words):
+                if channel.key == "cpap" and not self._number_follows(count):
+                    return None  # "cpap" alone is the mode
+                self.i += count
+                return channel
+        return None
+
+    def _number_follows(self, offset: int) -> bool:
+        follow = self.i + offset
+        return follow < len(self.words) and _NUMBER.match(self.words[follow]) is not None
+
+    def _channel_item(self, channel: Channel) -> None:
+        if channel.kind is Kind.MARK and channel.key not in _TAKES_REST:
+            self.readings.append(read_value(channel, ""))
+        elif channel.kind in (Kind.MARK, Kind.TEXT, Kind.INSTANT):
+            rest = " ".join(self.words[self.i :])
+            self.i = len(self.words)
+            self.readings.append(read_value(channel, rest))
+        elif channel.kind is Kind.CHOICE:
+            self._choice(channel)
+        else:
+            self._number(channel)
+
+    def _choice(self, channel: Channel) -> None:
+        longest = max(len(c.split()) for c in channel.choices)
+        for count in range(min(longest, len(self.words) - self.i), 0, -1):
+            text = " ".join(self.words[self.i : self.i + count])
+            if any(text.casefold() == c.casefold() for c in channel.choices):
+                self.i += count
+                self._add(channel.key, text)
+                return
+        text = self.words[self.i] if self.i < len(self.words) else ""
+        self.i += 1
+        self._add(channel.key, _MODE_WORDS.get(text.casefold(), text) if channel.key == "mode" else text)
+
+    def _number(self, channel: Channel) -> None:
+        if self.i >= len(self.words):
+            raise refuse("line.value_missing", channel=channel.key, accepted=f"{channel.key} NUMBER")
+        if channel.key == "sbp" and (pair := _PAIR.fullmatch(self.words[self.i])):
+            self.i += 1
+            self._add("sbp", pair[1])
+            self._add("dbp", pair[2])
+            return
+        match = _VALUE.fullmatch(self.words[self.i])
+        if match is None:
+            raise refuse("value.not_a_number", channel=channel.key, value=self.words[self.i],
+                         accepted=f"a number in {channel.unit or 'its unit'}")  # fmt: skip
+        self.i += 1
+        self._add(channel.key, match[1], match[2] or self._unit_word(channel))
+
+    def _unit_word(self, channel: Channel) -> str:
+        """A unit as a word of its own, when the next word is one of this channel's and names no channel."""
+        if self.i >= len(self.words):
+            return ""
+        word = self.words[self.i].casefold()
+        names = {n for u in channel.units for n in (u.name.casefold(), *u.spellings) if n}
+        if word in names and word not in _CHANNEL_WORDS:
+            self.i += 1
+            return word
+        return ""
+
+    def _bare_numbers(self) -> None:
+        """`16 6 35`: two bare numbers are IPAP and EPAP, a third FiO2. One alone says nothing."""
+        if not self._number_follows(1):
+            raise refuse("line.number_alone", value=self.words[self.i], accepted=EXAMPLE)
+        self._add("ipap", self.words[self.i])
+        self._add("epap", self.words[self.i + 1])
+        self.i += 2
+        self._bare_fio2()
+
+    def _bare_fio2(self) -> None:
+        if self.i < len(self.words) and (match := re.fullmatch(r"(\d+(?:[.,]\d+)?)(%?)", self.words[self.i])):
+            self.i += 1
+            self._add("fio2", match[1], match[2])
+
+    def _next_number(self, name: str) -> str:
+        self.i += 1
+        if self.i >= len(self.words) or not _NUMBER.fullmatch(self.words[self.i]):
+            raise refuse("line.value_missing", channel=name, accepted=f"{name} NUMBER")
+        self.i += 1
+        return self.words[self.i - 1]
+
+    def _add(self, key: str, text: str, unit: str = "") -> None:
+        self.readings.append(read_value(CHANNELS[key], text, unit))
+
+    def _got(self, key: str) -> Reading | None:
+        return next((r for r in self.readings if r.channel.key == key), None)
+
+    def _settle_support(self) -> None:
+        """Turn `ps 10` into the IPAP it means over the EPAP typed or in force."""
+        if self.support is None:
+            return
+        if self._got("ipap") is not None:
+            raise refuse("line.twice", channel="ipap", accepted="ps or ipap, not both")
+        epap = self._got("epap")
+        base = epap.number if epap is not None and epap.number is not None else self.in_force.epap
+        if isnan(base):
+            raise refuse("line.epap_needed", accepted="ps 10 epap 5")
+        total = base + float(self.support.replace(",", "."))
+        self._add("ipap", f"{total:g}")
+        self.notes.append(Message("line.ps_means_ipap", {"ps": self.support, "epap": base, "ipap": total}))
+
+    def _settle_mode(self) -> None:
+        """One pressure is CPAP; two pressures need a mode with two."""
+        mode = self._got("mode")
+        named = mode.words if mode is not None else self.in_force.mode
+        if self._got("cpap") is not None and named != "CPAP":
+            if mode is not None:
+                raise refuse("line.mode_contradicts", mode=named, channel="cpap", accepted="cpap 8")
+            self._add("mode", "CPAP")
+            self.notes.append(Message("line.mode_becomes", {"mode": "CPAP", "before": self.in_force.mode}))
+        if (self._got("ipap") or self._got("epap")) and named in ("CPAP", "high-flow nasal", "off"):
+            raise refuse("line.mode_needed", mode=named, accepted="bpap-st 16/6")
