@@ -63,6 +63,7 @@ class StateRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     hypercapnia_mmHg: Limit
     hypoxaemia_pf_mmHg: Limit
     consistent_within_mmol_L: Limit
+    reported_bicarbonate: Literal["actual", "standard"]
 
 
 class OxygenRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
