@@ -1,0 +1,146 @@
+"""What each blood gas says by itself: computed figures, state, consistency, whether it was drawn off support."""
+
+from __future__ import annotations
+
+from math import isnan
+
+from core.judgement.paired_limits import above
+from core.judgement.policy import Policy
+from core.judgement.shapes import GasFigure
+from core.physiology import acid_base, oxygenation
+from core.physiology.formula import Reasoned, reasoned
+from core.record.gas_sample import GasSample
+from core.record.instant import MINUTE, Instant
+from core.record.message import Message
+from core.record.settings import SettingsInForce
+from core.record.support import SupportTime
+
+STANDS_FOR_ARTERIAL = frozenset({"arterial", "capillary"})
+"""Sites whose pH and PCO2 judge. A capillary PO2 does not stand for an arterial one."""
+
+
+def gas_figures(
+    samples: tuple[GasSample, ...], settings: SettingsInForce, support: SupportTime, policy: Policy
+) -> tuple[GasFigure, ...]:
+    """The figures of every sample, in order of time."""
+    return tuple(gas_figure(g, settings, support, policy) for g in samples)
+
+
+def gas_figure(gas: GasSample, settings: SettingsInForce, support: SupportTime, policy: Policy) -> GasFigure:
+    """The figures of one sample. Everything absent has a reason."""
+    reasons: dict[str, Message] = {}
+    warnings: list[Message] = []
+    off = is_off_support(gas.at, support, policy)
+    fio2, fio2_from = _fio2(gas, settings, support, policy, warnings)
+    calculated = reasoned(acid_base.bicarbonate, gas.ph, gas.paco2)
+    sbe = reasoned(acid_base.standard_base_excess, gas.ph, calculated.value)
+    for name, result in (("hco3_calculated_mmol_L", calculated), ("sbe_mmol_L", sbe)):
+        if result.reason is not None:
+            reasons[name] = result.reason
+    pf = _arterial(gas, reasons, "pf_mmHg", reasoned(oxygenation.pf_ratio, gas.pao2, fio2))
+    gradient = reasoned(oxygenation.aa_gradient, gas.pao2, gas.paco2, fio2)
+    aa = _arterial(gas, reasons, "aa_gradient_mmHg", gradient)
+    if aa is not None and aa < 0:
+        warnings.append(Message("gas.negative_gradient", {"aa": aa, "fio2": fio2}))
+    consistent = _consistent(gas, calculated.value, policy, reasons, warnings)
+    if gas.site_assumed:
+        warnings.append(Message("gas.site_assumed", {}))
+    state = state_of(gas, policy, reasons)
+    return GasFigure(
+        at=gas.at, site=gas.site, site_assumed=gas.site_assumed,
+        ph=_number(gas.ph), ph_text=gas.text("ph"), paco2_mmHg=_number(gas.paco2), paco2_text=_typed(gas, "paco2"),
+        pao2_mmHg=_number(gas.pao2), hco3_mmol_L=_number(gas.hco3),
+        hco3_calculated_mmol_L=_number(calculated.value), sbe_mmol_L=_number(sbe.value), be_mmol_L=_number(gas.be),
+        lactate_mmol_L=_number(gas.lactate), fio2=_number(fio2), fio2_from=fio2_from, pf_mmHg=pf,
+        aa_gradient_mmHg=aa, consistent=consistent, state=state,
+        hypercapnic=None if isnan(gas.paco2) else above(gas.paco2, policy.state.hypercapnia_mmHg),
+        off_support=off, doubt=gas.doubt, corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
+        warnings=tuple(warnings), ids=gas.ids,
+    )  # fmt: skip
+
+
+def is_off_support(at: Instant, support: SupportTime, policy: Policy) -> bool:
+    """Whether a moment lies in a break, within the settling time after one, or after support ended.
+
+    Before support began is not off support: such a gas is a baseline.
+    """
+    if support.start is None or at < support.start:
+        return False
+    if support.end is not None and at > support.end:
+        return True
+    settle = int(policy.response.off_support_after_break_min.value * MINUTE)
+    return any(b.start <= at and (b.end is None or at <= b.end + settle) for b in support.breaks)
+
+
+def state_of(gas: GasSample, policy: Policy, reasons: dict[str, Message] | None = None) -> str | None:
+    """`severe`, `acidotic` or `resolved`; None for a venous gas, without a pH, or at pH 7.35 without a PaCO2.
+
+    The pH is taken as reported, not rounded. Resolved needs the PaCO2 to be accounted for: it must be there.
+    """
+    why = reasons if reasons is not None else {}
+    if gas.site not in STANDS_FOR_ARTERIAL:
+        why["state"] = Message("gas.venous_has_no_state", {})
+        return None
+    if isnan(gas.ph):
+        why["state"] = Message("gas.no_ph", {})
+        return None
+    if gas.ph < policy.state.severe_below_ph.value:
+        return "severe"
+    if gas.ph < policy.state.acidotic_below_ph.value:
+        return "acidotic"
+    if isnan(gas.paco2):
+        why["state"] = Message("gas.no_paco2", {})
+        return None
+    return "resolved"
+
+
+def _fio2(
+    gas: GasSample, settings: SettingsInForce, support: SupportTime, policy: Policy, warnings: list[Message]
+) -> tuple[float, str | None]:
+    """The FiO2 of a gas: its own beats the setting. A difference asks. In a break the setting says nothing."""
+    in_break = support.break_at(gas.at) is not None
+    setting = float("nan") if in_break else settings.fio2.at(gas.at)
+    if not isnan(gas.gas_fio2):
+        if abs(gas.gas_fio2 - setting) > policy.oxygen.fio2_same_within.value + 1e-9:
+            values = {"gas_fio2": gas.gas_fio2, "setting": setting}
+            warnings.append(Message("gas.fio2_differs", values))
+        return gas.gas_fio2, "gas"
+    return (setting, None) if isnan(setting) else (setting, "setting")
+
+
+def _arterial(gas: GasSample, reasons: dict[str, Message], name: str, result: Reasoned) -> float | None:
+    """A figure that only an arterial PO2 gives."""
+    if gas.site != "arterial":
+        reasons[name] = Message("gas.needs_arterial", {"site": gas.site})
+        return None
+    if result.reason is not None:
+        reasons[name] = result.reason
+    return _number(result.value)
+
+
+def _consistent(
+    gas: GasSample, calculated: float, policy: Policy, reasons: dict[str, Message], warnings: list[Message]
+) -> bool | None:
+    """Whether the reported actual bicarbonate belongs to this pH and PCO2."""
+    if isnan(gas.hco3) or isnan(calculated):
+        reasons["consistent"] = Message("gas.consistency_needs_three", {})
+        return None
+    if policy.state.reported_bicarbonate == "standard":
+        reasons["consistent"] = Message("gas.bicarbonate_is_standard", {})
+        return None
+    difference = gas.hco3 - calculated
+    within = policy.state.consistent_within_mmol_L.value
+    if abs(difference) <= within + 1e-9:
+        return True
+    values = {"hco3": gas.hco3, "calculated": calculated, "difference": difference, "within": within}
+    warnings.append(Message("gas.inconsistent", values))
+    return False
+
+
+def _number(value: float) -> float | None:
+    return None if isnan(value) else float(value)
+
+
+def _typed(gas: GasSample, channel: str) -> str | None:
+    raw, unit = (gas.texts or {}).get(channel, ("", ""))
+    return f"{raw} {unit}" if raw else None
