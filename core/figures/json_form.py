@@ -1,0 +1,121 @@
+"""Figures as the JSON of the command line: keys carry units, instants are ISO 8601, absent is null with a reason.
+
+Messages become `{"key": ..., "values": {...}}` and, where the caller has words, `"text"` beside them.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import fields, is_dataclass
+from functools import lru_cache
+from typing import Any
+
+from core.judgement.shapes import EpisodeFigures, LeakFigure, RatioFigure
+from core.record.local_time import zoned_iso
+from core.record.message import Message
+
+Json = dict[str, Any]
+Wording = Callable[[Message], str]
+
+_INSTANTS = frozenset(
+    {"at", "as_of", "since", "ended_at", "last_change_at", "break_since", "anchor_at", "first_at", "window_from",
+     "window_to", "baseline_at", "headline_gas_at", "superseded_at", "span_from", "seen_at", "settled_at",
+     "due_from", "due_until", "done_at", "observed_at"}
+)  # fmt: skip
+_INTERNAL = frozenset({"reasons", "concern", "ids"})
+
+
+def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
+    """The figures of one episode as JSON values."""
+    form = _Form(figures.zone, word)
+    out: Json = {
+        "episode": figures.episode,
+        "label": figures.label,
+        "as_of": form.instant(figures.as_of),
+        "policy": figures.policy_hash,
+        "profile": dict(figures.profile),
+        "support": form.plain(figures.support),
+        "responses": [form.plain(r) for r in figures.responses],
+        "gases": [form.plain(g) for g in figures.gases],
+        "ratios": {
+            "pf": form.ratio(figures.pf, "_mmHg", "_mmHg"),
+            "sf": form.ratio(figures.sf, "", ""),
+            "rox": form.ratio(figures.rox, "", ""),
+        },
+        "trends": {k: form.plain(v) for k, v in figures.trends.items()},
+        "leak": form.leak(figures.leak),
+        "scores": {k: form.plain(v) for k, v in figures.scores.items()},
+        "flags": [form.plain(f) for f in figures.flags],
+        "due": [form.due(form.plain(d)) for d in figures.due],
+        "levers": [form.plain(lever) for lever in figures.levers],
+        "expected_co2": form.plain(figures.expected_co2) if figures.expected_co2 else None,
+        "see": {"rank": figures.concern.rank, "why": form.value("why", figures.concern.why)},
+        "warnings": [form.message(w) for w in figures.warnings],
+    }
+    return out
+
+
+@lru_cache(maxsize=64)
+def _names(kind: type) -> tuple[str, ...]:
+    return tuple(f.name for f in fields(kind))
+
+
+class _Form:
+    """Turns shapes into JSON values in one zone, with or without words."""
+
+    def __init__(self, zone: str, word: Wording | None) -> None:
+        self.zone = zone
+        self.word = word
+
+    def instant(self, at: int) -> str:
+        return zoned_iso(at, self.zone)
+
+    def message(self, message: Message) -> Json:
+        out: Json = {"key": message.key, "values": dict(message.values)}
+        if self.word is not None:
+            out["text"] = self.word(message)
+        return out
+
+    def plain(self, shape: Any) -> Json:
+        """Every field by its name, with `NAME_reason` beside a null that has one."""
+        out: Json = {}
+        reasons: Mapping[str, Message] = getattr(shape, "reasons", {})
+        for name in _names(type(shape)):
+            if name in _INTERNAL:
+                continue
+            value = getattr(shape, name)
+            out[name] = self.value(name, value)
+            if value is None and name in reasons:
+                out[f"{name}_reason"] = self.message(reasons[name])
+        return out
+
+    def value(self, name: str, value: Any) -> Any:
+        if name in _INSTANTS and isinstance(value, int):
+            return self.instant(value)
+        if isinstance(value, Message):
+            return self.message(value)
+        if is_dataclass(value) and not isinstance(value, type):
+            return self.plain(value)
+        if isinstance(value, Mapping):
+            return {str(k): self.value(str(k), v) for k, v in value.items()}
+        if isinstance(value, tuple):
+            inner = "at" if name == "t" else ""
+            return [self.value(inner, v) for v in value]
+        return value
+
+    def ratio(self, ratio: RatioFigure, latest: str, slope: str) -> Json:
+        """A ratio with its unit in the keys, as the format names them."""
+        plain = self.plain(ratio)
+        rename = {"latest": f"latest{latest}", "slope_per_h": f"slope{slope}_per_h"}
+        rename["latest_reason"] = f"latest{latest}_reason"
+        rename["slope_per_h_reason"] = f"slope{slope}_per_h_reason"
+        return {rename.get(k, k): v for k, v in plain.items()}
+
+    def leak(self, leak: LeakFigure) -> Json:
+        return self.plain(leak)
+
+    @staticmethod
+    def due(plain: Json) -> Json:
+        """`from` and `until`, which cannot be names of fields in Python."""
+        rename = {"due_from": "from", "due_until": "until"}
+        return {rename.get(k, k): v for k, v in plain.items()}
