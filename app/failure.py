@@ -1,0 +1,63 @@
+"""Turning whatever went wrong into a message: the environment's faults in plain words, ours as a report."""
+
+from __future__ import annotations
+
+import errno
+import logging
+import traceback
+from dataclasses import dataclass
+
+from core.record.message import Message, RecordError
+from storage.errors import StoreError
+
+_log = logging.getLogger("luffmark")
+
+_FILE_KEYS = {
+    errno.ENOENT: "file.missing",
+    errno.EACCES: "file.not_allowed",
+    errno.EPERM: "file.not_allowed",
+    errno.EROFS: "file.read_only_disk",
+    errno.ENOSPC: "file.disk_full",
+    errno.EDQUOT: "file.disk_full",
+    errno.EISDIR: "file.is_folder",
+    errno.ENOTDIR: "file.missing",
+    errno.ENAMETOOLONG: "file.name_too_long",
+}
+
+
+@dataclass(frozen=True, slots=True)
+class Failure:
+    """Work that did not succeed: what to tell, and for an error of ours the trace for a report.
+
+    `subject` and `number` say which submission it was (0 and "" outside the runner).
+    """
+
+    message: Message
+    subject: str = ""
+    number: int = 0
+    trace: str = ""
+
+    @property
+    def is_ours(self) -> bool:
+        """An error in the program, to be reported; not one of the person or the surroundings."""
+        return bool(self.trace)
+
+
+def failure_of(error: BaseException, subject: str = "", number: int = 0) -> Failure:
+    """The failure that an exception means.
+
+    >>> failure_of(FileNotFoundError(2, "No such file", "a.csv")).message.key
+    'file.missing'
+    """
+    if isinstance(error, (RecordError, StoreError)):
+        return Failure(error.message, subject, number)
+    if isinstance(error, OSError) and error.filename is not None:
+        key = _FILE_KEYS.get(error.errno or 0, "file.failed")
+        values = {"path": str(error.filename), "detail": error.strerror or str(error)}
+        return Failure(Message(key, values), subject, number)
+    if isinstance(error, OSError) and error.errno in (errno.ENOSPC, errno.EDQUOT):
+        return Failure(Message("file.disk_full", {"path": "", "detail": str(error)}), subject, number)
+    trace = "".join(traceback.format_exception(error))
+    _log.error("unexpected error in %s\n%s", subject or "work", trace)
+    detail = f"{type(error).__name__}: {error}".splitlines()[0][:200]
+    return Failure(Message("error.unexpected", {"detail": detail}), subject, number, trace)
