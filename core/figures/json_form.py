@@ -7,7 +7,6 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import fields, is_dataclass
-from functools import lru_cache
 from typing import Any
 
 from core.judgement.shapes import EpisodeFigures, LeakFigure, RatioFigure
@@ -55,11 +54,6 @@ def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
     return out
 
 
-@lru_cache(maxsize=64)
-def _names(kind: type) -> tuple[str, ...]:
-    return tuple(f.name for f in fields(kind))
-
-
 class _Form:
     """Turns shapes into JSON values in one zone, with or without words."""
 
@@ -80,7 +74,7 @@ class _Form:
         """Every field by its name, with `NAME_reason` beside a null that has one."""
         out: Json = {}
         reasons: Mapping[str, Message] = getattr(shape, "reasons", {})
-        for name in _names(type(shape)):
+        for name in (f.name for f in fields(shape)):
             if name in _INTERNAL:
                 continue
             value = getattr(shape, name)

@@ -1,0 +1,55 @@
+"""Wall-clock times over midnight and over clock changes."""
+
+from datetime import UTC, datetime
+
+import pytest
+
+from core.record.instant import iso, parse
+from core.record.local_time import candidates, latest_wall_time, local
+from core.record.message import RecordError
+
+LONDON = "Europe/London"
+
+
+def moment(hour, minute, now, **more):
+    return iso(latest_wall_time(hour, minute, now=parse(now), zone=LONDON, **more))
+
+
+def test_a_time_after_midnight_is_yesterdays_when_it_has_not_come_yet():
+    assert moment(23, 50, "2026-03-28T00:10:00+00:00") == "2026-03-27T23:50:00+00:00"
+
+
+def test_a_time_may_lead_the_clock_by_five_minutes():
+    assert moment(0, 14, "2026-03-28T00:10:00+00:00") == "2026-03-28T00:14:00+00:00"
+    assert moment(0, 16, "2026-03-28T00:10:00+00:00") == "2026-03-27T00:16:00+00:00"
+
+
+def test_a_time_that_the_clock_skipped_is_refused():
+    with pytest.raises(RecordError, match=r"time\.skipped"):
+        moment(1, 30, "2026-03-29T03:00:00+00:00")
+
+
+def test_a_time_that_came_twice_is_asked_about():
+    now = "2026-10-25T02:00:00+00:00"
+    with pytest.raises(RecordError, match=r"time\.repeated"):
+        moment(1, 30, now)
+    assert moment(1, 30, now, which="first") == "2026-10-25T00:30:00+00:00"
+    assert moment(1, 30, now, which="second") == "2026-10-25T01:30:00+00:00"
+
+
+def test_the_second_of_two_is_not_offered_before_it_has_come():
+    assert moment(1, 30, "2026-10-25T00:40:00+00:00") == "2026-10-25T00:30:00+00:00"
+
+
+def test_candidates_are_none_one_or_two():
+    wall = datetime(2026, 1, 1, 1, 30, tzinfo=UTC).time()
+    days = [
+        datetime(2026, 3, 29, tzinfo=UTC),
+        datetime(2026, 3, 28, tzinfo=UTC),
+        datetime(2026, 10, 25, tzinfo=UTC),
+    ]
+    assert [len(candidates(d.date(), wall, LONDON)) for d in days] == [0, 1, 2]
+
+
+def test_local_shows_the_wall_clock():
+    assert local(parse("2026-07-01T12:00:00+00:00"), LONDON).hour == 13

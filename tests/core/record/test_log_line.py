@@ -1,0 +1,125 @@
+"""The line's grammar: what it reads, what it asks, what it refuses."""
+
+from math import nan
+
+import pytest
+from hypothesis import given
+from hypothesis import strategies as st
+
+from core.record.instant import MINUTE, iso, parse
+from core.record.log_line import read_line
+from core.record.message import RecordError
+from core.record.settings import Settings
+
+NOW = parse("2026-03-28T02:10:00+00:00")
+BILEVEL = Settings("BPAP-ST", 14.0, 5.0, nan, 0.35, nan, 14.0, nan, None)
+NOTHING = Settings(None, nan, nan, nan, nan, nan, nan, nan, None)
+ON_CPAP = Settings("CPAP", nan, nan, 8.0, 0.4, nan, nan, nan, None)
+
+
+def read(text, in_force=BILEVEL):
+    return read_line(text, now=NOW, zone="Europe/London", in_force=in_force)
+
+
+def values(text, in_force=BILEVEL):
+    return {r.channel.key: r.value for r in read(text, in_force).readings}
+
+
+@pytest.mark.parametrize(
+    ("text", "expected"),
+    [
+        ("16/6 35", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
+        ("16 6", {"ipap": 16.0, "epap": 6.0}),
+        ("ipap 16 epap 6 fio2 35%", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
+        ("ipap 16,5", {"ipap": 16.5}),
+        ("ps 10 epap 5", {"ipap": 15.0, "epap": 5.0}),
+        ("ps 12", {"ipap": 17.0}),
+        ("rr 28 spo2 91 bp 118/64", {"rr": 28.0, "spo2": 91.0, "sbp": 118.0, "dbp": 64.0}),
+        ("gas sent", {"gas_sent": None}),
+        ("mask off", {"mask_off": None}),
+        ("told registrar | will come", {"told": "registrar | will come"}),
+        ("note tired at 16/6", {"note": "tired at 16/6"}),
+        ("mode pressure control", {"mode": "pressure control"}),
+        ("bpap-s", {"mode": "BPAP-S"}),
+        ("cpap", {"mode": "CPAP"}),
+        ("o2 flow 3", {"o2_flow": 3.0}),
+        ("ceiling of care no intubation", {"ceiling_of_care": "no intubation"}),
+    ],
+)
+def test_lines_are_read(text, expected):
+    assert values(text) == expected
+
+
+def test_a_gas_in_kilopascal_keeps_what_was_typed():
+    line = read("ph 7,26 paco2 8.3 kPa")
+    assert [(r.channel.key, r.raw, r.raw_unit) for r in line.readings] == [
+        ("ph", "7,26", "pH"),
+        ("paco2", "8.3", "kPa"),
+    ]
+
+
+def test_one_pressure_makes_the_mode_cpap_and_says_so():
+    line = read("cpap 8")
+    assert {r.channel.key: r.value for r in line.readings} == {"cpap": 8.0, "mode": "CPAP"}
+    assert [n.key for n in line.notes] == ["line.mode_becomes"]
+    assert (line.support_before, line.support_after) == (9.0, 0.0)
+
+
+def test_the_support_before_and_after_is_shown():
+    line = read("ipap 18")
+    assert (line.support_before, line.support_after) == (9.0, 13.0)
+
+
+def test_times_are_read():
+    assert iso(read("01:40 rr 20").at) == "2026-03-28T01:40:00+00:00"
+    assert read("20m ago rr 20").at == NOW - 20 * MINUTE
+    assert read("1h ago rr 20").at == NOW - 60 * MINUTE
+    assert read("rr 20").at == NOW
+
+
+def test_a_time_long_ago_is_said_aloud():
+    assert [n.key for n in read("14:20 rr 20").notes] == ["line.long_ago"]
+
+
+def test_the_settings_in_force_are_those_of_the_lines_own_moment():
+    def at(moment):
+        return BILEVEL if moment < NOW - 15 * MINUTE else ON_CPAP
+
+    assert read_line("20m ago ipap 18", now=NOW, zone="UTC", in_force=at).support_before == 9.0
+
+
+@pytest.mark.parametrize(
+    ("text", "in_force", "key"),
+    [
+        ("", BILEVEL, "line.empty"), ("14:20", BILEVEL, "line.empty"), ("35", BILEVEL, "line.number_alone"),
+        ("ipap 5", BILEVEL, "settings.ipap_not_above_epap"), ("5/5", NOTHING, "settings.ipap_not_above_epap"),
+        ("16/6", ON_CPAP, "line.mode_needed"), ("ps 10", NOTHING, "line.epap_needed"),
+        ("foo 3", BILEVEL, "line.word_unknown"), ("ipap", BILEVEL, "line.value_missing"),
+        ("ipap 70", BILEVEL, "value.past_hard_limit"), ("ipap 14 ipap 15", BILEVEL, "line.twice"),
+        ("ps 10 ipap 15", BILEVEL, "line.twice"), ("mode bilevel", BILEVEL, "value.not_a_choice"),
+        ("25:10 rr 20", BILEVEL, "time.unreadable"), ("note", BILEVEL, None),
+    ],
+)  # fmt: skip
+def test_what_cannot_be_is_refused_by_name(text, in_force, key):
+    if key is None:
+        assert values(text, in_force) == {"note": None}
+        return
+    with pytest.raises(RecordError) as refused:
+        read(text, in_force)
+    assert refused.value.message.key == key
+
+
+def test_soft_limits_become_questions_and_an_unconfirmed_one_a_doubt():
+    line = read("rr 45")
+    assert [q.key for q in line.questions] == ["doubt.unusual"]
+    (doubtful,) = line.entries("E", by="AB", zone="UTC", confirmed=False)
+    (sure,) = line.entries("E", by="AB", zone="UTC", confirmed=True)
+    assert (doubtful.doubt, sure.doubt) == ("doubt.unusual", "")
+
+
+@given(st.text(alphabet="0123456789/:.,% abcdefimnoprstu", max_size=40))
+def test_no_line_raises_anything_but_a_refusal(text):
+    try:
+        read(text)
+    except RecordError as refused:
+        assert refused.message.key
