@@ -28,6 +28,11 @@ class Clock:
             return real_now()
         return self.pretended if self.began is None else self.pretended + real_now() - self.began
 
+    @property
+    def is_running(self) -> bool:
+        """Whether it moves on."""
+        return self.pretended is None or self.began is not None
+
 
 REAL = Clock()
 

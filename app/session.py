@@ -1,0 +1,197 @@
+"""The session: what is looked at, by whom, and as of when. One immutable value, one signal when it changes.
+
+Views read `model.session`, send intents (`select`, `set_as_of`, ...) and ask for figures by `model.ask`. Own
+and foreign commits arrive alike, by the changes since the head that the session knows.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field, replace
+from enum import StrEnum
+from pathlib import Path
+from typing import Any
+
+from PySide6.QtCore import QObject, QTimer, Signal, Slot
+
+from app.clock import REAL, Clock
+from app.failure import Failure
+from app.operations import store as store_operations
+from app.operations.outcome import Outcome
+from app.runner import Operation, Runner
+from core.judgement.policy import Policy, shipped_policy
+from core.record.instant import Instant
+
+POLL_MS = 2_000
+"""How often another process's commits are looked for."""
+TICK_MS = 15_000
+"""How often a running clock tells that it moved."""
+
+
+class What(StrEnum):
+    """What changed, so that a view refreshes only what it must."""
+
+    STORE = "store"
+    RECORD = "record"
+    CLOCK = "clock"
+    AS_OF = "as of"
+    AS_KNOWN_AT = "as known at"
+    POLICY = "policy"
+    PERSON = "person"
+    SELECTION = "selection"
+    LAYOUT = "layout"
+    ZONE = "zone"
+
+
+@dataclass(frozen=True, slots=True)
+class Changed:
+    """The payload of `SessionModel.changed`. `episodes` are those with new entries; `record` changes only."""
+
+    what: frozenset[What]
+    episodes: frozenset[str] = frozenset()
+
+    def touches(self, *what: What) -> bool:
+        """Whether any of these changed."""
+        return bool(self.what.intersection(what))
+
+
+@dataclass(frozen=True, slots=True)
+class Session:
+    """What is looked at. `as_of` None follows the clock; `as_known_at` None is all that is recorded.
+
+    `selection` is the key of the episode in hand. `head` is the ledger's sequence that views have been told.
+    """
+
+    store_path: Path
+    zone: str = "UTC"
+    head: int = 0
+    clock: Clock = REAL
+    as_of: Instant | None = None
+    as_known_at: Instant | None = None
+    policy: Policy = field(default_factory=shipped_policy)
+    person: str = ""
+    selection: str | None = None
+    is_demo: bool = False
+
+    def now(self) -> Instant:
+        """The moment entries are recorded at: the real clock, or the pretended one."""
+        return self.clock.now()
+
+    def moment(self) -> Instant:
+        """The moment figures are computed for."""
+        return self.now() if self.as_of is None else self.as_of
+
+    @property
+    def is_live(self) -> bool:
+        """Whether the session follows its clock and knows all that is recorded."""
+        return self.as_of is None and self.as_known_at is None
+
+
+class SessionModel(QObject):
+    """Holds the session for the views. Close it (or its runner) before the application ends."""
+
+    changed = Signal(object)
+    """`Changed`."""
+    failed = Signal(object)
+    """A `Failure` that no view took."""
+
+    def __init__(self, session: Session, runner: Runner, parent: QObject | None = None) -> None:
+        super().__init__(parent)
+        self._session = session
+        self.runner = runner
+        runner.committed.connect(self._committed)
+        runner.failed.connect(self.failed)
+        self._poll = QTimer(self)
+        self._poll.setInterval(POLL_MS)
+        self._poll.timeout.connect(self.look_for_changes)
+        self._tick = QTimer(self)
+        self._tick.setInterval(TICK_MS)
+        self._tick.timeout.connect(self._ticked)
+
+    @property
+    def session(self) -> Session:
+        """The session as it is now."""
+        return self._session
+
+    def start(self) -> None:
+        """Begin to follow the clock and other writers; the first look tells `STORE`, `POLICY` and `RECORD`."""
+        self.ask(store_operations.describe, None, done=self._described, subject="store facts")
+        self._poll.start()
+        self._tick.start()
+
+    def close(self) -> None:
+        """Stop the timers and the runner."""
+        self._poll.stop()
+        self._tick.stop()
+        self.runner.close()
+
+    def ask(
+        self, operation: Operation, request: Any = None, *,
+        done: Callable[[Outcome[Any]], None] | None = None,
+        failed: Callable[[Failure], None] | None = None, subject: str = "",
+    ) -> int:  # fmt: skip
+        """Submit an operation as the person and at the moment of the session."""
+        now = self._session.now()
+        return self.runner.submit(operation, request, who=self._session.person, now=now,
+                                  done=done, failed=failed, subject=subject)  # fmt: skip
+
+    def select(self, episode: str | None) -> None:
+        """Take an episode in hand."""
+        self._become(What.SELECTION, selection=episode)
+
+    def set_person(self, initials: str) -> None:
+        """Who enters from now on."""
+        self._become(What.PERSON, person=initials.strip())
+
+    def set_as_of(self, at: Instant | None) -> None:
+        """Look at a moment, or follow the clock again."""
+        self._become(What.AS_OF, as_of=at)
+
+    def set_as_known_at(self, at: Instant | None) -> None:
+        """See only what had been recorded by a moment, or all again."""
+        self._become(What.AS_KNOWN_AT, as_known_at=at)
+
+    def set_zone(self, zone: str) -> None:
+        """Show and read wall-clock times in a zone."""
+        self._become(What.ZONE, zone=zone)
+
+    def layout_changed(self) -> None:
+        """Tell that panels or other layout were changed (they live outside the ledger)."""
+        self.changed.emit(Changed(frozenset({What.LAYOUT})))
+
+    @Slot()
+    def look_for_changes(self) -> None:
+        """Ask for what was committed since the head that views have been told."""
+        self.ask(store_operations.changes, self._session.head, done=self._found, subject="changes")
+
+    def _become(self, what: What, **values: Any) -> None:
+        made = replace(self._session, **values)
+        if made != self._session:
+            self._session = made
+            self.changed.emit(Changed(frozenset({what})))
+
+    @Slot(int)
+    def _committed(self, head: int) -> None:
+        if head > self._session.head:
+            self.look_for_changes()
+
+    @Slot()
+    def _ticked(self) -> None:
+        if self._session.as_of is None and self._session.clock.is_running:
+            self.changed.emit(Changed(frozenset({What.CLOCK})))
+
+    def _described(self, outcome: Outcome[store_operations.StoreFacts]) -> None:
+        facts = outcome.value
+        self._session = replace(self._session, head=outcome.head, policy=facts.policy)
+        self.changed.emit(Changed(frozenset({What.STORE, What.POLICY, What.RECORD}), facts.episodes))
+
+    def _found(self, outcome: Outcome[store_operations.Changes]) -> None:
+        if outcome.head <= self._session.head:
+            return
+        found = outcome.value
+        what = {What.RECORD}
+        if found.policy is not None:
+            what.add(What.POLICY)
+        self._session = replace(self._session, head=outcome.head,
+                                policy=found.policy or self._session.policy)  # fmt: skip
+        self.changed.emit(Changed(frozenset(what), found.episodes))
