@@ -1,29 +1,17 @@
-"""Limits with two printed forms (45 mmHg / 6.0 kPa), compared so that the unit never decides.
+"""The policy's limits with two printed forms (45 mmHg / 6.0 kPa): compared so that the unit never decides.
 
-Both the value and the limit are taken in tenths of a kPa, half up: the coarser of the two prints. So a ward in
-mmHg and a ward in kPa get the same judgement of the same blood.
+The rule itself, tenths of a kPa half up, is `core.physiology.pressure`; here it meets a `Limit`.
 """
 
 from __future__ import annotations
 
-from math import floor, isnan
-
 from core.judgement.policy_sections import Limit
+from core.physiology.pressure import above_pressure_limit, below_pressure_limit
 from core.record.units import MMHG_PER_KPA
 
 
-def tenths_of_kpa(mmhg: float) -> int:
-    """A pressure in mmHg as whole tenths of a kPa, half up.
-
-    >>> tenths_of_kpa(45.0), tenths_of_kpa(49.0), tenths_of_kpa(60.0)
-    (60, 65, 80)
-    """
-    return floor(mmhg / MMHG_PER_KPA * 10.0 + 0.5 + 1e-9)
-
-
-def limit_tenths(limit: Limit) -> int:
-    """The limit in tenths of a kPa: its printed kPa form, else converted from mmHg."""
-    return round(limit.kpa * 10) if limit.kpa is not None else tenths_of_kpa(limit.value)
+def _kpa(limit: Limit) -> float:
+    return limit.kpa if limit.kpa is not None else limit.value / MMHG_PER_KPA
 
 
 def above(mmhg: float, limit: Limit) -> bool:
@@ -33,9 +21,13 @@ def above(mmhg: float, limit: Limit) -> bool:
     >>> above(45.2, limit), above(46.0, limit), above(6.05 * MMHG_PER_KPA, limit)
     (False, True, True)
     """
-    return not isnan(mmhg) and tenths_of_kpa(mmhg) > limit_tenths(limit)
+    return bool(above_pressure_limit(mmhg, _kpa(limit)))
 
 
 def below(mmhg: float, limit: Limit) -> bool:
-    """Whether a pressure is below a paired limit; NaN never is."""
-    return not isnan(mmhg) and tenths_of_kpa(mmhg) < limit_tenths(limit)
+    """Whether a pressure is below a paired limit; NaN never is.
+
+    >>> below(44.0, Limit(45.0, "BTS", "confirmed", 6.0))
+    True
+    """
+    return bool(below_pressure_limit(mmhg, _kpa(limit)))

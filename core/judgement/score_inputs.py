@@ -1,0 +1,213 @@
+"""Which values a score takes: the nearest to its moment, fresh enough, with no anchor or break between.
+
+A score that needs a gas is taken at that gas's time; NEWS2 at the latest vitals. A missing input is never
+taken as normal: it stays missing, and the score is bounded.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from math import isnan
+
+import numpy as np
+
+from core.judgement.context import Context
+from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
+from core.judgement.scores import Score, breathes_oxygen, hacor, news2
+from core.judgement.shapes import GasFigure, ScoreFigure, ScoreInput
+from core.record.channels import CHANNELS
+from core.record.episode import Episode, Series
+from core.record.instant import MINUTE, Instant
+from core.record.message import Message
+from core.record.support import SupportTime
+
+DEVICE_MEDIAN = 15 * MINUTE
+"""A device rate is taken as the median of this span around the moment: single breaths are noise."""
+OBSERVED = ("rr", "spo2", "hr", "sbp", "temp")
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """A value found for a score: the number or word, when it was, and its text as typed."""
+
+    value: float | str | None = None
+    at: Instant | None = None
+    text: str | None = None
+
+    @property
+    def number(self) -> float | None:
+        """The value when it is a number."""
+        return self.value if isinstance(self.value, float) else None
+
+    @property
+    def word(self) -> str | None:
+        """The value when it is a word."""
+        return self.value if isinstance(self.value, str) else None
+
+
+NOTHING = Found()
+
+
+def barriers(
+    anchors: tuple[Instant, ...], support: SupportTime
+) -> np.ndarray[tuple[int], np.dtype[np.int64]]:
+    """The moments that no score may reach across: anchors, and the edges of breaks. Sorted."""
+    edges = [b.start for b in support.breaks] + [b.end for b in support.breaks if b.end is not None]
+    return np.array(sorted({*anchors, *edges}), np.int64)
+
+
+def nearest(
+    episode: Episode,
+    channel: str,
+    at: Instant,
+    within_min: float,
+    walls: np.ndarray[tuple[int], np.dtype[np.int64]],
+) -> Found:
+    """The value of a numeric channel nearest to a moment: a person's count first, else the machine's.
+
+    A value at the very moment of a wall counts as before it, like a gas at the minute of an anchor.
+    """
+    series = episode.number(channel)
+    span = int(within_min * MINUTE)
+    low, high = _between_walls(at, walls)
+    near = series.between(max(at - span, low), min(at + span, high))
+    counted = near.spots
+    if len(counted):
+        i = int(np.argmin(np.abs(counted.t - at)))
+        return Found(float(counted.v[i]), int(counted.t[i]), _typed(episode, counted, i))
+    return _from_machine(near, at)
+
+
+def _from_machine(near: Series, at: Instant) -> Found:
+    """The median of the machine's values around the moment."""
+    if not len(near):
+        return NOTHING
+    around = near.between(at - DEVICE_MEDIAN // 2, at + DEVICE_MEDIAN // 2)
+    values = around.v[~np.isnan(around.v)]
+    if not values.size:
+        return NOTHING
+    i = int(np.argmin(np.abs(around.t - at)))
+    return Found(float(np.median(values)), int(around.t[i]))
+
+
+def _between_walls(at: Instant, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> tuple[Instant, Instant]:
+    """The span around a moment that no wall cuts."""
+    i = int(np.searchsorted(walls, at, side="left"))
+    low = int(walls[i - 1]) + 1 if i > 0 else -(2**62)
+    high = int(walls[i]) if i < walls.size else 2**62
+    return low, high
+
+
+def _typed(episode: Episode, series: Series, i: int) -> str | None:
+    entry = episode.standing[int(series.origin[i])].entry
+    same_unit = entry.raw_unit == CHANNELS[entry.channel].unit
+    return entry.raw.replace(",", ".") if entry.raw and same_unit else None
+
+
+def nearest_word(episode: Episode, channel: str, at: Instant, within_min: float) -> Found:
+    """The newest word of a channel at or before a moment, if it is fresh."""
+    words = episode.text(channel)
+    i = int(np.searchsorted(words.t, at, side="right")) - 1
+    if i < 0 or at - int(words.t[i]) > within_min * MINUTE:
+        return NOTHING
+    return Found(words.v[i], int(words.t[i]))
+
+
+def rate_at(ctx: Context, at: Instant, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> Found:
+    """The respiratory rate: a counted one beats the machine's."""
+    within = ctx.policy.freshness.vitals_min.value
+    counted = nearest(ctx.episode, "rr", at, within, walls)
+    return counted if counted.value is not None else nearest(ctx.episode, "rr_total", at, within, walls)
+
+
+def hacor_at(ctx: Context, gas: GasFigure, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> ScoreFigure:
+    """HACOR 2017 at a gas, with the vitals nearest to it."""
+    fresh = ctx.policy.freshness
+    found = {
+        "hr": nearest(ctx.episode, "hr", gas.at, fresh.vitals_min.value, walls),
+        "ph": Found(gas.ph, gas.at, gas.ph_text),
+        "gcs": nearest(ctx.episode, "gcs", gas.at, fresh.gcs_min.value, walls),
+        "pf": Found(gas.pf_mmHg, gas.at) if gas.pf_mmHg is not None else NOTHING,
+        "rr": rate_at(ctx, gas.at, walls),
+    }
+    score = hacor(
+        hr=found["hr"].number, ph=gas.ph, gcs=found["gcs"].number, pf=gas.pf_mmHg, rr=found["rr"].number,
+        paco2=gas.paco2_mmHg, texts={k: f.text for k, f in found.items()},
+        on_mask=_on_mask(ctx, gas.at),
+    )  # fmt: skip
+    reasons = {"pf": gas.reasons["pf_mmHg"]} if gas.pf_mmHg is None and "pf_mmHg" in gas.reasons else {}
+    return score_figure(score, gas.at, found, reasons)
+
+
+def _on_mask(ctx: Context, at: Instant) -> bool | None:
+    """On mask ventilation at a moment; None where support's start is not known. High flow is no mask."""
+    if ctx.support.start is None:
+        return False
+    return ctx.support.on_support(at) and ctx.settings.at(at).mode != "high-flow nasal"
+
+
+def hacor_at_gases(
+    ctx: Context, walls: np.ndarray[tuple[int], np.dtype[np.int64]]
+) -> dict[Instant, ScoreFigure]:
+    """HACOR at every arterial or capillary gas drawn on support."""
+    judged = (g for g in ctx.gases if g.site in STANDS_FOR_ARTERIAL and not g.off_support)
+    return {g.at: hacor_at(ctx, g, walls) for g in judged}
+
+
+def news2_latest(ctx: Context, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> ScoreFigure:
+    """NEWS2 at the latest vitals that a person took (the machine's, where nobody took any)."""
+    at = _latest_vitals(ctx.episode)
+    if at is None:
+        return ScoreFigure(reasons={"points": Message("score.no_vitals", {})})
+    return news2_at(ctx, at, walls)
+
+
+def news2_at(ctx: Context, at: Instant, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> ScoreFigure:
+    """NEWS2 at a moment. Scale 2 only where a clinician recorded it."""
+    fresh = ctx.policy.freshness
+    found = {
+        c: nearest(ctx.episode, c, at, fresh.vitals_min.value, walls) for c in ("spo2", "sbp", "hr", "temp")
+    }
+    found["rr"] = rate_at(ctx, at, walls)
+    found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.gcs_min.value)
+    now = ctx.settings.at(at)
+    oxygen = breathes_oxygen(
+        None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow
+    )
+    found["on_oxygen"] = Found("yes" if oxygen else "no", at) if oxygen is not None else NOTHING
+    score = news2(
+        rr=found["rr"].number, spo2=found["spo2"].number, on_oxygen=oxygen, sbp=found["sbp"].number,
+        hr=found["hr"].number, acvpu=found["acvpu"].word, temp=found["temp"].number,
+        scale=2 if ctx.episode.latest_text("spo2_scale") == "2" else 1,
+        texts={k: f.text for k, f in found.items()}, age=ctx.episode.latest("age"),
+    )  # fmt: skip
+    return score_figure(score, at, found, {})
+
+
+def _latest_vitals(episode: Episode) -> Instant | None:
+    taken = [int(s.t[-1]) for c in OBSERVED if len(s := episode.number(c).spots)]
+    machine = [int(s.t[-1]) for c in OBSERVED if len(s := episode.number(c))]
+    return max(taken, default=max(machine, default=None))
+
+
+def score_figure(
+    score: Score, at: Instant, found: Mapping[str, Found], reasons: Mapping[str, Message]
+) -> ScoreFigure:
+    """A pure score with the times of its inputs."""
+    inputs = {
+        name: ScoreInput(_shown(part.value), found.get(name, NOTHING).at, part.points)
+        for name, part in score.parts.items()
+    }
+    why = dict(reasons)
+    if score.points is None:
+        why["points"] = Message("score.inputs_missing", {"missing": ", ".join(score.missing)})
+    caveat = score.population_reason or (score.notes[0] if score.notes else None)
+    return ScoreFigure(
+        points=score.points, lowest=score.lowest, highest=score.highest, at=at, missing=score.missing,
+        inputs=inputs, population=score.population, caveat=caveat, reasons=why,
+    )  # fmt: skip
+
+
+def _shown(value: float | str | bool | None) -> float | str | None:
+    return ("yes" if value else "no") if isinstance(value, bool) else value
