@@ -18,7 +18,7 @@ def is_zone(name: str) -> bool:
     """
     try:
         ZoneInfo(name)
-    except (OSError, ValueError):
+    except (KeyError, OSError, ValueError):
         return False
     return bool(name)
 
