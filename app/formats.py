@@ -11,7 +11,7 @@ from html import escape
 from math import isnan
 
 from core.record.channels import CHANNELS, Group, Kind
-from core.record.instant import HOUR, MINUTE, Instant
+from core.record.instant import MINUTE, Instant
 from core.record.local_time import candidates, local
 from core.record.units import MMHG_PER_KPA
 
