@@ -1,5 +1,6 @@
 """The line's grammar: what it reads, what it asks, what it refuses."""
 
+from contextlib import suppress
 from math import nan
 
 import pytest
@@ -119,7 +120,5 @@ def test_soft_limits_become_questions_and_an_unconfirmed_one_a_doubt():
 
 @given(st.text(alphabet="0123456789/:.,% abcdefimnoprstu", max_size=40))
 def test_no_line_raises_anything_but_a_refusal(text):
-    try:
+    with suppress(RecordError):
         read(text)
-    except RecordError as refused:
-        assert refused.message.key
