@@ -1,0 +1,97 @@
+"""Scores take the nearest fresh value, never across a change or a break, and say what is missing."""
+
+import numpy as np
+import pytest
+
+from core.figures.episode_figures import gas_stage, record_stage
+from core.judgement.policy import shipped_policy
+from core.judgement.score_inputs import barriers, hacor_at, nearest, nearest_word, news2_latest, rate_at
+from tests.support.log import device, episode, moment
+
+NO_WALLS = np.empty(0, np.int64)
+
+
+def context(log, at="06:00", samples=()):
+    return gas_stage(record_stage(episode(log, samples=samples), moment(at), shipped_policy()))
+
+
+def test_the_nearest_value_inside_the_span_is_taken():
+    e = episode("01:40 hr 100\n02:10 hr 110\n02:31 hr 120")
+    assert nearest(e, "hr", moment("02:00"), 30, NO_WALLS).value == 110.0
+    assert nearest(e, "hr", moment("03:30"), 30, NO_WALLS).value is None
+
+
+def test_a_value_beyond_a_change_is_not_taken():
+    e = episode("01:50 hr 100\n02:20 hr 120")
+    walls = np.array([moment("01:55")])
+    assert nearest(e, "hr", moment("02:00"), 30, walls).value == 120.0
+    assert nearest(e, "hr", moment("01:52"), 30, walls).value == 100.0
+
+
+def test_a_value_at_the_minute_of_a_change_belongs_before_it():
+    e = episode("02:00 hr 100")
+    walls = np.array([moment("02:00")])
+    assert nearest(e, "hr", moment("01:55"), 30, walls).value == 100.0
+    assert nearest(e, "hr", moment("02:10"), 30, walls).value is None
+
+
+def test_a_counted_rate_beats_the_machines_and_the_machines_is_a_median():
+    machine = [device("rr_total", "01:50", [20] * 10 + [60] + [20] * 9)]
+    assert rate_at(context("01:55 rr 28", samples=machine), moment("02:00"), NO_WALLS).value == 28.0
+    assert rate_at(context("01:00 hr 90", samples=machine), moment("02:00"), NO_WALLS).value == 20.0
+
+
+def test_words_are_taken_from_before_only():
+    e = episode("01:00 acvpu voice\n02:10 acvpu alert")
+    assert nearest_word(e, "acvpu", moment("02:00"), 240).value == "voice"
+    assert nearest_word(e, "acvpu", moment("05:30"), 60).value is None
+
+
+HYPOXAEMIC = "01:00 mode bpap-st ipap 14 epap 6 fio2 50\n01:58 hr 128 rr 34 gcs 14\n"
+
+
+def test_hacor_is_taken_at_the_gas():
+    ctx = context(HYPOXAEMIC + "02:00 ph 7.38 paco2 38 pao2 70 site arterial")
+    score = hacor_at(ctx, ctx.gases[0], NO_WALLS)
+    assert score.points == 1 + 0 + 2 + 4 + 1
+    assert score.population == "inside"
+    assert score.inputs["hr"].at == moment("01:58")
+
+
+def test_a_missing_input_bounds_the_score_and_is_named():
+    ctx = context("01:00 mode bpap-st ipap 14 epap 6 fio2 50\n02:00 ph 7.38 paco2 38 pao2 70 site arterial")
+    score = hacor_at(ctx, ctx.gases[0], NO_WALLS)
+    assert score.points is None
+    assert (score.lowest, score.highest) == (4, 4 + 1 + 10 + 4)
+    assert set(score.missing) == {"hr", "gcs", "rr"}
+
+
+def test_an_unknown_fio2_leaves_a_range():
+    ctx = context(
+        "01:00 mode bpap-st ipap 14 epap 6 o2 flow 6\n01:58 hr 128 rr 34 gcs 14\n02:00 ph 7.38 paco2 38 pao2 70"
+    )
+    score = hacor_at(ctx, ctx.gases[0], NO_WALLS)
+    assert score.points is None
+    assert score.missing == ("pf",)
+    assert score.population == "outside"
+
+
+@pytest.mark.parametrize(("scale", "points"), [("", 10), ("spo2_scale 2", 7)])
+def test_news2_uses_scale_two_only_where_a_clinician_recorded_it(scale, points):
+    log = "01:00 mode bpap-st ipap 14 epap 5 fio2 35\n" + (f"01:01 {scale}\n" if scale else "")
+    ctx = context(log + "02:00 rr 26 spo2 90 bp 118/70 hr 112 acvpu alert temp 37.4")
+    assert news2_latest(ctx, NO_WALLS).points == points
+
+
+def test_news2_counts_an_oxygen_flow_as_oxygen():
+    ctx = context(
+        "01:00 mode bpap-st ipap 14 epap 5 o2 flow 3\n02:00 rr 18 spo2 97 bp 130/80 hr 80 acvpu alert temp 37"
+    )
+    assert news2_latest(ctx, NO_WALLS).inputs["on_oxygen"].points == 2
+
+
+def test_walls_are_anchors_and_the_edges_of_breaks():
+    ctx = context("00:50 rr 20\n01:00 mode bpap-st ipap 14 epap 5\n02:00 mask off\n02:20 mask on")
+    assert barriers((moment("01:00"),), ctx.support).tolist() == [
+        moment(t) for t in ("01:00", "02:00", "02:20")
+    ]
