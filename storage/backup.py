@@ -1,0 +1,112 @@
+"""Backup and restore. A backup is one step of the driver's own copying, never a copy of the live file."""
+
+from __future__ import annotations
+
+import os
+import shutil
+from contextlib import closing
+from pathlib import Path
+
+from storage import keys, opening
+from storage.engine import driver_errors, raw_connection
+from storage.errors import store_error, translated
+
+
+def backup(store: Path, key: bytes | None, target: Path) -> None:
+    """Write a consistent copy of an open store to `target`, with its envelope; whole or not at all.
+
+    Raises:
+        StoreError: `store.exists`, `store.no_folder`, `store.disk_full`, `store.damaged`.
+    """
+    _check_free(target)
+    unfinished = target.with_name(target.name + ".unfinished")
+    unfinished.unlink(missing_ok=True)
+    try:
+        _copy_in_one_step(store, key, unfinished)
+        _check_opens(unfinished, key)
+        _sync(unfinished)
+        if key is not None:
+            keys.write_envelope(keys.envelope_path(target), keys.read_envelope(keys.envelope_path(store)))
+        os.replace(unfinished, target)
+        _sync(target.parent)
+    except driver_errors() as error:
+        raise translated(error, target) from error
+    except OSError as error:
+        raise store_error("store.backup_failed", path=target.name, detail=error.strerror or "") from error
+    finally:
+        unfinished.unlink(missing_ok=True)
+        unfinished.with_name(unfinished.name + "-journal").unlink(missing_ok=True)
+        if not target.exists():
+            keys.envelope_path(target).unlink(missing_ok=True)
+
+
+def _check_free(target: Path) -> None:
+    if target.exists() or keys.envelope_path(target).exists():
+        raise store_error("store.exists", path=target.name)
+    if not target.parent.is_dir():
+        raise store_error("store.no_folder", path=str(target.parent))
+
+
+def _copy_in_one_step(store: Path, key: bytes | None, target: Path) -> None:
+    with (
+        closing(raw_connection(store, key)) as live,
+        closing(raw_connection(target, key, mode="rwc")) as copy,
+    ):
+        live.backup(copy, pages=-1)
+        copy.execute("PRAGMA journal_mode = DELETE")  # one file, nothing beside it
+
+
+def _check_opens(path: Path, key: bytes | None) -> None:
+    """A backup that cannot be read is no backup."""
+    with closing(raw_connection(path, key, mode="ro")) as copy:
+        if copy.execute("PRAGMA quick_check(1)").fetchone()[0] != "ok":
+            raise store_error("store.damaged", path=path.name, detail="backup")
+
+
+def _sync(path: Path) -> None:
+    """Ask the disk to keep it. Windows cannot sync a folder and does not need to."""
+    if path.is_dir() and os.name == "nt":
+        return
+    descriptor = os.open(path, os.O_RDONLY)
+    try:
+        os.fsync(descriptor)
+    finally:
+        os.close(descriptor)
+
+
+def restore(source: Path, new: Path) -> None:
+    """Make a new store of a backup, with its envelope; whole or not at all, and nothing is overwritten.
+
+    Raises:
+        StoreError: `store.missing`, `store.exists`, `store.not_a_store`, `store.damaged`.
+    """
+    if not source.is_file():
+        raise store_error("store.missing", path=source.name)
+    _check_free(new)
+    encrypted = opening.is_encrypted(source)
+    if encrypted and not keys.envelope_path(source).exists():
+        raise store_error("key.envelope_missing", path=keys.envelope_path(source).name)
+    unfinished = new.with_name(new.name + ".unfinished")
+    try:
+        shutil.copyfile(source, unfinished)
+        if not encrypted:
+            _check_plain(unfinished)
+        _sync(unfinished)
+        if encrypted:
+            keys.write_envelope(keys.envelope_path(new), keys.read_envelope(keys.envelope_path(source)))
+        os.replace(unfinished, new)
+        _sync(new.parent)
+    except OSError as error:
+        raise store_error("store.restore_failed", path=new.name, detail=error.strerror or "") from error
+    finally:
+        unfinished.unlink(missing_ok=True)
+        if not new.exists():
+            keys.envelope_path(new).unlink(missing_ok=True)
+
+
+def _check_plain(path: Path) -> None:
+    try:
+        _check_opens(path, None)
+    except driver_errors() as error:
+        raise translated(error, path) from error
+    opening.open_store(path, None, read_only=True).database.close()

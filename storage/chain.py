@@ -1,0 +1,54 @@
+"""One hash chain over all batches: each batch's hash covers its rows, its facts and the hash before it.
+
+A row's digest is SHA-256 over its salt and its columns as JSON (numbers as their shortest exact text); a blob
+stands in it by its own SHA-256. So a row can be erased later and its digest kept, without breaking the chain
+and without letting the value be guessed.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterable, Mapping
+from hashlib import sha256
+from typing import Any
+
+import sqlalchemy as sa
+
+from storage.schema import LEDGER_ROWS, batch
+
+GENESIS = "0" * 64
+_UNCHAINED = frozenset({"salt", "blob", "data"})
+ROW_COLUMNS: dict[str, tuple[str, ...]] = {
+    t.name: tuple(c.name for c in t.columns if c.name not in _UNCHAINED) for t in LEDGER_ROWS
+}
+_HEADER = tuple(c.name for c in batch.columns if c.name != "hash")
+
+
+def row_digest(table: str, row: Mapping[str, Any]) -> str:
+    """The digest of one ledger row, as hex."""
+    values = [_plain(row[name]) for name in ROW_COLUMNS[table]]
+    text = json.dumps([table, *values], ensure_ascii=False, separators=(",", ":"), allow_nan=False)
+    return sha256(bytes(row["salt"]) + text.encode()).hexdigest()
+
+
+def _plain(value: Any) -> Any:
+    return bytes(value).hex() if isinstance(value, bytes | memoryview) else value
+
+
+def rows_digest(digests: Iterable[str]) -> str:
+    """The digest of a batch's rows, in order of sequence."""
+    total = sha256()
+    for one in digests:
+        total.update(bytes.fromhex(one))
+    return total.hexdigest()
+
+
+def batch_hash(header: Mapping[str, Any]) -> str:
+    """The hash of a batch: over all its facts, its rows' digest and the hash before it among them."""
+    text = json.dumps([header[name] for name in _HEADER], ensure_ascii=False, separators=(",", ":"))
+    return sha256(text.encode()).hexdigest()
+
+
+def last_batch(connection: sa.Connection) -> sa.RowMapping | None:
+    """The newest batch, or None in an empty store."""
+    return connection.execute(sa.select(batch).order_by(batch.c.seq.desc()).limit(1)).mappings().first()

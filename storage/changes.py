@@ -1,0 +1,54 @@
+"""What was recorded after a sequence: which episodes and channels changed, for whoever shows them."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import sqlalchemy as sa
+
+from storage import schema as s
+from storage.chain import last_batch
+from storage.settings_kept import layout_revision
+
+
+@dataclass(frozen=True, slots=True)
+class Changes:
+    """What changed after a sequence. `layout_revision` rises with each layout kept or forgotten."""
+
+    head: int
+    episodes: frozenset[str]
+    channels: Mapping[str, frozenset[str]]
+    policy_changed: bool = False
+    documents_changed: bool = False
+    layout_revision: int = 0
+
+
+def changes_between(connection: sa.Connection, seq: int) -> Changes:
+    """The changes after `seq`, read by the tables' own keys."""
+    last = last_batch(connection)
+    head = 0 if last is None else int(last["last_seq"])
+    revision = layout_revision(connection)
+    if head <= seq:
+        return Changes(head, frozenset(), {}, layout_revision=revision)
+    e, c = s.entry.c, s.chunk.c
+    channels: dict[str, set[str]] = {}
+    for here, away, channel in connection.execute(
+        sa.select(e.episode_id, e.moved_from, e.channel).where(e.seq > seq)
+    ):
+        for episode in (here, away) if away else (here,):
+            channels.setdefault(episode, set()).add(channel)
+    for episode, channel in connection.execute(sa.select(c.episode_id, c.channel).where(c.seq > seq)):
+        channels.setdefault(episode, set()).add(channel)
+    return Changes(
+        head,
+        frozenset(channels),
+        {k: frozenset(v) for k, v in channels.items()},
+        _any_after(connection, s.policy, seq),
+        _any_after(connection, s.document, seq),
+        revision,
+    )
+
+
+def _any_after(connection: sa.Connection, table: sa.Table, seq: int) -> bool:
+    return connection.execute(sa.select(table.c.seq).where(table.c.seq > seq).limit(1)).first() is not None

@@ -1,0 +1,204 @@
+"""Device samples as immutable blocks, one per hour: exact, small, quick to decode.
+
+Values that are whole multiples of a power of ten are kept as integers, so that 12.3 comes back as 12.3;
+anything else is kept as float64. Integers go as differences in bytes, or as offsets from the least in bits,
+deflated where that helps: whichever is smallest. Times that keep one step are not stored at all.
+"""
+
+from __future__ import annotations
+
+import zlib
+from collections.abc import Iterator
+from dataclasses import dataclass
+from hashlib import sha256
+
+import numpy as np
+from numpy.typing import NDArray
+
+from core.record.instant import HOUR
+from core.record.samples import Times, Values
+from storage.errors import store_error
+
+CODEC = "b1"
+_REGULAR, _HAS_NAN, _FLOAT, _BITS, _DEFLATED = 1, 2, 4, 8, 16
+_MAX_SCALE = 9
+_MAX_DECIMALS = 15
+_EXACT = 2.0**53
+_WIDTHS = (1, 2, 4, 8)
+_INTS = {w: np.dtype(f"<i{w}") for w in _WIDTHS}
+Integers = NDArray[np.int64]
+
+
+@dataclass(frozen=True, slots=True)
+class Block:
+    """One encoded block: `n` samples from `t0` to `t1`, both included."""
+
+    t0: int
+    t1: int
+    n: int
+    blob: bytes
+
+    @property
+    def sha(self) -> bytes:
+        """SHA-256 of the bytes."""
+        return sha256(self.blob).digest()
+
+
+def hour_blocks(t: Times, v: Values, decimals: int) -> Iterator[Block]:
+    """Samples, shape (n,), times strictly increasing, as one block per hour of the clock (UTC)."""
+    if t.size == 0:
+        return
+    edges = np.flatnonzero(np.diff(t // HOUR)) + 1
+    for part_t, part_v in zip(np.split(t, edges), np.split(v, edges), strict=True):
+        yield encode(part_t, part_v, decimals)
+
+
+def encode(t: Times, v: Values, decimals: int) -> Block:
+    """One block of samples: `t` int64 us UTC strictly increasing, `v` float64 (NaN kept), shapes (n,), n > 0."""
+    gaps = np.diff(t)
+    step = int(np.gcd.reduce(gaps)) if gaps.size else 1
+    regular = bool((gaps == step).all())
+    time_code, times = (0, b"") if regular else _planes(gaps // step)
+    nan = np.isnan(v)
+    gone = np.packbits(nan).tobytes() if nan.any() else b""
+    common = _REGULAR * regular | _HAS_NAN * bool(gone)
+    decimals = min(decimals, _MAX_DECIMALS)
+    candidates = []
+    for flags, scale, start, width, values in _value_forms(v, nan, decimals):
+        body = times + gone + values
+        packer = zlib.compressobj(9, zlib.DEFLATED, -15)
+        small = packer.compress(body) + packer.flush()
+        if len(small) < len(body):
+            flags, body = flags | _DEFLATED, small
+        head = bytes((common | flags, scale | decimals << 4, time_code << 6 | width))
+        candidates.append(head + _varint(t.size) + _varint(step) + _varint(_zigzag(start)) + body)
+    return Block(int(t[0]), int(t[-1]), int(t.size), min(candidates, key=len))
+
+
+def _value_forms(v: Values, nan: NDArray[np.bool_], decimals: int) -> list[tuple[int, int, int, int, bytes]]:
+    """The ways to write the values: (flags, scale, start, width, bytes)."""
+    found = _as_integers(v, nan, decimals)
+    if found is None:
+        return [(_FLOAT, 0, 0, 0, v.astype("<f8").tobytes())]
+    scale, whole = found
+    code, planes = _planes(np.diff(whole))
+    low = int(whole.min())
+    bits = int(whole.max() - low).bit_length()
+    forms = [(0, scale, int(whole[0]), code, planes)]
+    if bits <= 32:
+        forms.append((_BITS, scale, low, bits, _bit_packed(whole - low, bits)))
+    return forms
+
+
+def _as_integers(v: Values, nan: NDArray[np.bool_], decimals: int) -> tuple[int, Integers] | None:
+    """The power of ten that makes every value whole, tried from the decimals as written. NaN repeats the last."""
+    if nan.any():
+        last = np.maximum.accumulate(np.where(nan, 0, np.arange(v.size)))
+        v = np.nan_to_num(v[last], nan=0.0)
+    if not np.isfinite(v).all() or np.signbit(v[v == 0.0]).any():
+        return None
+    for scale in dict.fromkeys((min(decimals, _MAX_SCALE), *range(_MAX_SCALE + 1))):
+        factor = 10.0**scale
+        whole = np.rint(v * factor)
+        if (np.abs(whole) < _EXACT).all() and np.array_equal(whole / factor, v):
+            return scale, whole.astype(np.int64)
+    return None
+
+
+def _planes(whole: Integers) -> tuple[int, bytes]:
+    """Integers in the narrowest width that holds them, by byte planes (which deflate better), with its code."""
+    top = int(np.abs(whole).max()) if whole.size else 0
+    code = next(c for c, w in enumerate(_WIDTHS) if top < 1 << (8 * w - 1))
+    packed = np.ascontiguousarray(whole.astype(_INTS[_WIDTHS[code]]))
+    return code, packed.view(np.uint8).reshape(-1, _WIDTHS[code]).T.tobytes()
+
+
+def _from_planes(raw: bytes, code: int, n: int) -> Integers:
+    width = _WIDTHS[code]
+    planes = np.frombuffer(raw, np.uint8).reshape(width, n)
+    return np.ascontiguousarray(planes.T).view(_INTS[width]).reshape(n).astype(np.int64)
+
+
+def _bit_packed(whole: Integers, bits: int) -> bytes:
+    as_bytes = whole.astype(">u4").view(np.uint8).reshape(-1, 4)
+    return np.packbits(np.unpackbits(as_bytes, axis=1)[:, 32 - bits :]).tobytes()
+
+
+def _from_bits(raw: bytes, bits: int, n: int) -> Integers:
+    if bits == 0:
+        return np.zeros(n, np.int64)
+    wide = np.zeros((n, 32), np.uint8)
+    wide[:, 32 - bits :] = np.unpackbits(np.frombuffer(raw, np.uint8), count=n * bits).reshape(n, bits)
+    return np.packbits(wide, axis=1).view(">u4").reshape(n).astype(np.int64)
+
+
+def _zigzag(value: int) -> int:
+    return value << 1 if value >= 0 else (-value << 1) - 1
+
+
+def _varint(value: int) -> bytes:
+    out = bytearray()
+    while value > 127:
+        out.append(value & 127 | 128)
+        value >>= 7
+    out.append(value)
+    return bytes(out)
+
+
+def _read_varint(blob: bytes, at: int) -> tuple[int, int]:
+    value = shift = 0
+    while True:
+        byte = blob[at]
+        value |= (byte & 127) << shift
+        at, shift = at + 1, shift + 7
+        if byte < 128:
+            return value, at
+
+
+def decode(blob: bytes, t0: int, sha: bytes | None = None) -> tuple[Times, Values, int]:
+    """The samples of a block: times int64 us UTC and values float64, shapes (n,), and decimals as written.
+
+    Raises:
+        StoreError: `store.damaged_chunk` when the bytes are not those that were written.
+    """
+    if sha is not None and sha256(blob).digest() != sha:
+        raise store_error("store.damaged_chunk", t0=t0)
+    try:
+        return _decode(blob, t0)
+    except (IndexError, zlib.error, ValueError, OverflowError, MemoryError) as error:
+        raise store_error("store.damaged_chunk", t0=t0) from error
+
+
+def _decode(blob: bytes, t0: int) -> tuple[Times, Values, int]:
+    flags, scale, widths = blob[0], blob[1] & 15, blob[2]
+    n, at = _read_varint(blob, 3)
+    step, at = _read_varint(blob, at)
+    start, at = _read_varint(blob, at)
+    start = start >> 1 if not start & 1 else -((start + 1) >> 1)
+    body = zlib.decompress(blob[at:], -15) if flags & _DEFLATED else blob[at:]
+    time_bytes = 0 if flags & _REGULAR else _WIDTHS[widths >> 6] * (n - 1)
+    nan_bytes = (n + 7) // 8 if flags & _HAS_NAN else 0
+    if flags & _REGULAR:
+        t = t0 + step * np.arange(n, dtype=np.int64)
+    else:
+        t = np.empty(n, np.int64)
+        t[0] = t0
+        t[1:] = t0 + step * np.cumsum(_from_planes(body[:time_bytes], widths >> 6, n - 1))
+    v = _values(body[time_bytes + nan_bytes :], flags, scale, widths & 63, start, n)
+    if nan_bytes:
+        gone = np.frombuffer(body[time_bytes : time_bytes + nan_bytes], np.uint8)
+        v[np.unpackbits(gone, count=n).astype(np.bool_)] = np.nan
+    return t, v, blob[1] >> 4
+
+
+def _values(raw: bytes, flags: int, scale: int, width: int, start: int, n: int) -> Values:
+    if flags & _FLOAT:
+        return np.frombuffer(raw, "<f8", n).astype(np.float64)
+    if flags & _BITS:
+        whole = start + _from_bits(raw, width, n)
+    else:
+        whole = np.empty(n, np.int64)
+        whole[0] = start
+        whole[1:] = start + np.cumsum(_from_planes(raw, width, n - 1))
+    exact: Values = whole / 10.0**scale
+    return exact

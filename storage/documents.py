@@ -1,0 +1,64 @@
+"""Documents and policies as the chain keeps them."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from hashlib import sha256
+
+import sqlalchemy as sa
+
+from core.record.instant import Instant
+from storage import schema as s
+from storage.errors import store_error
+
+
+@dataclass(frozen=True, slots=True)
+class DocumentFacts:
+    """What is known of a kept document without reading it."""
+
+    id: str
+    kind: str
+    name: str
+    size: int
+    sha: str
+    by: str
+    recorded_at: Instant
+    seq: int
+
+
+def listed(connection: sa.Connection) -> tuple[DocumentFacts, ...]:
+    """Every document's facts, in order."""
+    d, b = s.document.c, s.batch.c
+    query = (
+        sa.select(d.id, d.kind, d.name, sa.func.length(d.data), d.sha, b.by, b.recorded_at, d.seq)
+        .join_from(s.document, s.batch, d.batch_seq == b.seq)
+        .order_by(d.seq)
+    )
+    return tuple(
+        DocumentFacts(r[0], r[1], r[2], r[3], bytes(r[4]).hex(), r[5], r[6], r[7])
+        for r in connection.execute(query)
+    )
+
+
+def data(connection: sa.Connection, document_id: str) -> bytes:
+    """A document's bytes, checked against their digest.
+
+    Raises:
+        StoreError: `document.unknown`, `document.damaged`.
+    """
+    query = sa.select(s.document.c.data, s.document.c.sha).where(s.document.c.id == document_id)
+    row = connection.execute(query).first()
+    if row is None:
+        raise store_error("document.unknown", value=document_id)
+    if sha256(row[0]).digest() != bytes(row[1]):
+        raise store_error("document.damaged", value=document_id)
+    return bytes(row[0])
+
+
+def policy(connection: sa.Connection, head: int) -> tuple[str, str] | None:
+    """The (hash, text) of the newest policy up to a sequence."""
+    p = s.policy.c
+    row = connection.execute(
+        sa.select(p.hash, p.text).where(p.seq <= head).order_by(p.seq.desc()).limit(1)
+    ).first()
+    return (str(row[0]), str(row[1])) if row else None

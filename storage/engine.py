@@ -1,0 +1,156 @@
+"""Connections to the store's file: the one driver, its settings, transactions, and its errors in our words.
+
+Everything that only SQLite understands stands here and in `triggers`.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from contextlib import contextmanager
+from pathlib import Path
+from threading import RLock
+from typing import Any
+from urllib.parse import quote
+
+import sqlalchemy as sa
+from sqlalchemy import event
+from sqlalchemy.exc import DBAPIError
+from sqlcipher3 import dbapi2
+
+from storage.errors import DRIVER_ERRORS, StoreError, store_error, translated
+
+APPLICATION_ID = 0x4C556666
+BUSY_SECONDS = 10.0
+_READERS = 3
+
+
+def driver_errors() -> tuple[type[BaseException], ...]:
+    """The errors of the driver and of SQLAlchemy's wrapping of them."""
+    return (dbapi2.Error, DBAPIError, *DRIVER_ERRORS)
+
+
+def raw_connection(path: Path, key: bytes | None, *, mode: str = "rw", busy: float = BUSY_SECONDS) -> Any:
+    """A bare driver connection. `mode` is rwc, rw, ro or immutable; `key` the 32-byte raw key or None.
+
+    Writers begin explicitly (isolation_level None): the driver's own default neither rolls back DDL nor
+    takes the write lock at the start.
+    """
+    query = "mode=ro&immutable=1" if mode == "immutable" else f"mode={mode}"
+    uri = f"file:{quote(str(path.absolute()))}?{query}"
+    connection = dbapi2.connect(
+        uri, uri=True, isolation_level=None, check_same_thread=False, timeout=busy, cached_statements=256
+    )
+    try:
+        connection.execute("PRAGMA cipher_log_level = NONE")
+        if key is not None:
+            connection.execute(f"PRAGMA key = \"x'{key.hex()}'\"")
+        for setting in ("foreign_keys = ON", "recursive_triggers = ON", "synchronous = FULL",
+                        "secure_delete = ON", "temp_store = MEMORY", "trusted_schema = OFF",
+                        "cell_size_check = ON"):  # fmt: skip
+            connection.execute(f"PRAGMA {setting}")
+    except BaseException:
+        connection.close()
+        raise
+    return connection
+
+
+class Database:
+    """The engine of one store: short readers, one writer at a time, errors as `StoreError`."""
+
+    def __init__(
+        self, path: Path, key: bytes | None, *, mode: str = "rw", busy: float = BUSY_SECONDS
+    ) -> None:
+        self.path = path
+        self.read_only = mode in ("ro", "immutable")
+        self._busy = busy
+        self._write_lock = RLock()
+        self.engine = sa.create_engine(
+            "sqlite://",
+            module=dbapi2,
+            creator=lambda: raw_connection(path, key, mode=mode, busy=busy),
+            poolclass=sa.QueuePool,
+            pool_size=_READERS,
+            max_overflow=8,
+        )
+        event.listen(self.engine, "begin", _begin)
+
+    @contextmanager
+    def read(self) -> Iterator[sa.Connection]:
+        """A short read of one consistent state."""
+        with self._translating(), self.engine.connect() as connection, connection.begin():
+            yield connection
+
+    @contextmanager
+    def write(self) -> Iterator[sa.Connection]:
+        """A transaction that holds the write lock from its start; all of it is kept, or none.
+
+        Raises:
+            StoreError: `store.busy` when another writer holds the lock beyond the busy timeout.
+        """
+        if self.read_only:
+            raise store_error("store.read_only", path=self.path.name)
+        if not self._write_lock.acquire(timeout=self._busy):
+            raise store_error("store.busy", path=self.path.name, detail="another thread writes")
+        try:
+            with self._translating(), self.engine.connect() as plain:
+                connection = plain.execution_options(luff_write=True)
+                with connection.begin():
+                    yield connection
+        finally:
+            self._write_lock.release()
+
+    @contextmanager
+    def _translating(self) -> Iterator[None]:
+        try:
+            yield
+        except StoreError:
+            raise
+        except DBAPIError as error:
+            raise translated(error.orig or error, self.path) from error
+        except driver_errors() as error:
+            raise translated(error, self.path) from error
+
+    def close(self) -> None:
+        """Close every connection; the last one out folds the journal into the file."""
+        self.engine.dispose()
+
+
+def _begin(connection: sa.Connection) -> None:
+    write = connection.get_execution_options().get("luff_write")
+    connection.exec_driver_sql("BEGIN IMMEDIATE" if write else "BEGIN")
+
+
+def make_durable(path: Path, key: bytes | None) -> None:
+    """Create the file with its lasting settings: write-ahead journal and the application's mark."""
+    connection = raw_connection(path, key, mode="rwc")
+    try:
+        connection.execute(f"PRAGMA application_id = {APPLICATION_ID}")
+        connection.execute("PRAGMA journal_mode = WAL")
+    finally:
+        connection.close()
+
+
+def application_id(connection: sa.Connection) -> int:
+    """The mark in the file's header that says whose file it is."""
+    return int(connection.exec_driver_sql("PRAGMA application_id").scalar_one())
+
+
+def integrity_findings(connection: sa.Connection, *, encrypted: bool) -> list[str]:
+    """What the driver finds wrong with pages, indexes and references; empty when all is well."""
+    found: list[str] = []
+    if encrypted:
+        found += [str(row[0]) for row in connection.exec_driver_sql("PRAGMA cipher_integrity_check")]
+    found += [str(r[0]) for r in connection.exec_driver_sql("PRAGMA integrity_check(50)") if r[0] != "ok"]
+    for row in connection.exec_driver_sql("PRAGMA foreign_key_check"):
+        found.append(f"row {row[1]} of {row[0]} points to a missing row of {row[2]}")
+    return found
+
+
+def limit_pages(database: Database, pages: int) -> None:
+    """Keep the file from growing past a number of pages (for a quota, and to prove what a full disk does)."""
+
+    def limit(connection: Any, _record: Any) -> None:
+        connection.execute(f"PRAGMA max_page_count = {int(pages)}")
+
+    event.listen(database.engine, "connect", limit)
+    database.engine.dispose()

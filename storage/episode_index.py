@@ -1,0 +1,123 @@
+"""Which episodes there are, and which are open: a derived table, kept with each batch and rebuildable."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+import sqlalchemy as sa
+
+from core.record.entries import Action
+from core.record.knowledge import standing
+from storage import schema as s
+from storage.draft_batch import DraftBatch, Receipt
+from storage.reading_ledger import episode_entries
+
+_now = s.episode_now.c
+ENDS = "ended_at"
+
+
+def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -> None:
+    """Bring the table up to date with a batch that was just taken, in the same transaction."""
+    latest: dict[str, int] = {}
+    for d in draft.entries:
+        latest[d.entry.episode] = max(latest.get(d.entry.episode, d.entry.at), d.entry.at)
+    for c in draft.chunks:
+        latest[c.episode] = max(latest.get(c.episode, c.block.t1), c.block.t1)
+    ends = _touched_ends(connection, draft)
+    for episode, last_at in latest.items():
+        _note(connection, episode, last_at, receipt)
+    for episode in ends:
+        ended = ended_at(connection, episode, receipt.last_seq)
+        connection.execute(sa.update(s.episode_now).where(_now.episode_id == episode).values(ended_at=ended))
+
+
+def _touched_ends(connection: sa.Connection, draft: DraftBatch) -> set[str]:
+    touched = {d.entry.episode for d in draft.entries if d.entry.channel == ENDS}
+    moved = [
+        d.entry.replaces for d in draft.entries if d.entry.channel == ENDS and d.entry.action is Action.MOVE
+    ]
+    if moved:
+        query = sa.select(s.entry.c.moved_from).where(s.entry.c.replaces.in_(moved))
+        touched |= {row[0] for row in connection.execute(query) if row[0]}
+    return touched
+
+
+def _note(connection: sa.Connection, episode: str, last_at: int, receipt: Receipt) -> None:
+    known = connection.execute(sa.select(_now.last_at).where(_now.episode_id == episode)).first()
+    if known is None:
+        row = {"episode_id": episode, "first_seq": receipt.first_seq, "last_seq": receipt.last_seq,
+               "last_at": last_at, "ended_at": None}  # fmt: skip
+        connection.execute(sa.insert(s.episode_now), row)
+        return
+    connection.execute(
+        sa.update(s.episode_now)
+        .where(_now.episode_id == episode)
+        .values(last_seq=receipt.last_seq, last_at=max(last_at, known[0]))
+    )
+
+
+def ended_at(connection: sa.Connection, episode: str, head: int) -> int | None:
+    """When an episode ended by what stands, or None while it is open."""
+    entries = episode_entries(connection, episode, head)
+    ends = [
+        x.entry.number for x in standing(entries) if x.entry.channel == ENDS and x.entry.episode == episode
+    ]
+    return int(ends[-1]) if ends and ends[-1] is not None else None
+
+
+def episode_keys(connection: sa.Connection, head: int) -> tuple[str, ...]:
+    """Every episode first recorded by `head`, in order of first recording."""
+    query = sa.select(_now.episode_id).where(_now.first_seq <= head).order_by(_now.first_seq, _now.episode_id)
+    return tuple(row[0] for row in connection.execute(query))
+
+
+def open_episode_keys(connection: sa.Connection) -> tuple[str, ...]:
+    """Every episode with no end recorded, in order of first recording."""
+    query = sa.select(_now.episode_id).where(_now.ended_at.is_(None))
+    return tuple(row[0] for row in connection.execute(query.order_by(_now.first_seq, _now.episode_id)))
+
+
+def rebuilt(connection: sa.Connection) -> list[dict[str, object]]:
+    """The table as the ledger alone makes it, by episode."""
+    found: dict[str, dict[str, object]] = {}
+    e, c, b = s.entry.c, s.chunk.c, s.batch.c
+    for table, at in ((s.entry, e.at), (s.chunk, c.t1)):
+        query = (
+            sa.select(table.c.episode_id, sa.func.min(b.first_seq), sa.func.max(b.last_seq), sa.func.max(at))
+            .join_from(table, s.batch, table.c.batch_seq == b.seq)
+            .group_by(table.c.episode_id)
+        )
+        for episode, first, last, last_at in connection.execute(query):
+            row = found.setdefault(episode, {"episode_id": episode, "first_seq": first, "last_seq": last,
+                                             "last_at": last_at, "ended_at": None})  # fmt: skip
+            row.update(_widest(row, first, last, last_at))
+    for episode in _with_ends(connection):
+        found[episode]["ended_at"] = ended_at(connection, episode, 2**62)
+    return [found[key] for key in sorted(found)]
+
+
+def _widest(row: dict[str, object], first: int, last: int, last_at: int) -> dict[str, object]:
+    return {
+        "first_seq": min(int(str(row["first_seq"])), first),
+        "last_seq": max(int(str(row["last_seq"])), last),
+        "last_at": max(int(str(row["last_at"])), last_at),
+    }
+
+
+def _with_ends(connection: sa.Connection) -> Iterable[str]:
+    query = sa.select(s.entry.c.episode_id).where(s.entry.c.channel == ENDS).distinct()
+    return [row[0] for row in connection.execute(query)]
+
+
+def kept(connection: sa.Connection) -> list[dict[str, object]]:
+    """The table as it is kept, by episode."""
+    query = sa.select(s.episode_now).order_by(_now.episode_id)
+    return [dict(row) for row in connection.execute(query).mappings()]
+
+
+def rebuild(connection: sa.Connection) -> None:
+    """Make the table anew from the ledger."""
+    rows = rebuilt(connection)
+    connection.execute(sa.delete(s.episode_now))
+    if rows:
+        connection.execute(sa.insert(s.episode_now), rows)

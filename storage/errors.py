@@ -1,0 +1,50 @@
+"""What can go wrong with the store's surroundings, as messages and never as a driver's words."""
+
+from __future__ import annotations
+
+import sqlite3
+from pathlib import Path
+
+from core.record.message import Message, Value
+
+
+class StoreError(RuntimeError):
+    """The store cannot do it. Carries the message that says what failed and what to do."""
+
+    def __init__(self, message: Message) -> None:
+        super().__init__(f"{message.key} {dict(message.values)}")
+        self.message = message
+
+
+def store_error(key: str, **values: Value) -> StoreError:
+    """The error to raise for a store that cannot do what was asked.
+
+    >>> store_error("store.busy", seconds=5).message.key
+    'store.busy'
+    """
+    return StoreError(Message(key, values))
+
+
+_BY_WORDS = (
+    ("database is locked", "store.busy"),
+    ("database table is locked", "store.busy"),
+    ("database or disk is full", "store.disk_full"),
+    ("attempt to write a readonly database", "store.read_only"),
+    ("unable to open database file", "store.cannot_open"),
+    ("disk i/o error", "store.disk_error"),
+    ("file is not a database", "store.damaged"),
+    ("malformed", "store.damaged"),
+    ("out of memory", "store.damaged"),
+)
+
+
+def translated(error: BaseException, path: Path) -> StoreError:
+    """A driver's error as a message. A page that fails its check is damage, whatever the driver calls it."""
+    words = str(error).lower()
+    key = next((key for part, key in _BY_WORDS if part in words), "store.failed")
+    if key == "store.disk_error" and not path.exists():
+        key = "store.file_gone"
+    return store_error(key, path=path.name, detail=str(error).splitlines()[0][:200])
+
+
+DRIVER_ERRORS: tuple[type[BaseException], ...] = (sqlite3.Error,)

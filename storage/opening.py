@@ -1,0 +1,165 @@
+"""Creating and opening a store's file: format, key, triggers, and what the place allows."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+from uuid import uuid4
+
+import sqlalchemy as sa
+
+from core.record.message import Message
+from storage import keys, place, schema
+from storage.engine import APPLICATION_ID, BUSY_SECONDS, Database, application_id, make_durable
+from storage.errors import StoreError, store_error
+from storage.triggers import create_triggers, trigger_findings
+
+_PLAIN_HEADER = b"SQLite format 3\x00"
+
+
+@dataclass(frozen=True, slots=True)
+class Opened:
+    """An open store's parts. `notices` say why it is read-only, when it is."""
+
+    database: Database
+    key: bytes | None
+    facts: dict[str, str]
+    notices: tuple[Message, ...] = ()
+    recovery_code: str | None = None
+
+
+def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys.Cost) -> Opened:
+    """Make a new store's file, with its envelope when a passphrase is given.
+
+    Raises:
+        StoreError: `store.exists`, `store.no_folder`, `store.network_share`.
+        RecordError: `passphrase.too_short`.
+    """
+    _check_free(path)
+    facts = {"format": str(schema.FORMAT), "store_id": str(uuid4()), **facts}
+    new = keys.new_key(facts["store_id"], passphrase, cost) if passphrase is not None else None
+    key = new.key if new else None
+    try:
+        if new:
+            keys.write_envelope(keys.envelope_path(path), new.envelope)
+        make_durable(path, key)
+        database = Database(path, key)
+        with database.write() as connection:
+            schema.metadata.create_all(connection)
+            create_triggers(connection)
+            connection.execute(
+                sa.insert(schema.store_facts), [{"key": k, "value": v} for k, v in facts.items()]
+            )
+            _stamp(connection)
+    except BaseException:
+        for made in (path, keys.envelope_path(path)):
+            made.unlink(missing_ok=True)
+        raise
+    return Opened(database, key, facts, (), new.recovery_code if new else None)
+
+
+def _check_free(path: Path) -> None:
+    if not path.parent.is_dir():
+        raise store_error("store.no_folder", path=str(path.parent))
+    if path.exists() or keys.envelope_path(path).exists():
+        raise store_error("store.exists", path=path.name)
+    place.refuse_network_share(path)
+
+
+def _stamp(connection: sa.Connection) -> None:
+    """Say which migration the schema stands at, without importing the migration library."""
+    table = sa.Table(
+        "alembic_version", sa.MetaData(), sa.Column("version_num", sa.String(32), primary_key=True)
+    )
+    table.create(connection)
+    connection.execute(sa.insert(table), {"version_num": REVISION})
+
+
+REVISION = "0001"
+"""The newest migration; a test holds it equal to the migrations' own head."""
+
+
+def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float = BUSY_SECONDS) -> Opened:
+    """Open a store's file. Where the place takes no writing it opens read-only, with a notice.
+
+    Raises:
+        StoreError: what stands in the way: missing, newer, damaged, no store, locked, a network share.
+    """
+    if not path.is_file():
+        raise store_error("store.missing", path=path.name)
+    place.refuse_network_share(path)
+    key = data_key(path, passphrase)
+    notices: list[Message] = []
+    if not read_only and not place.can_write(path):
+        notices.append(Message("store.read_only_place", {"path": path.name}))
+    database = Database(path, key, mode=_mode(path, read_only or bool(notices)), busy=busy)
+    try:
+        facts = _checked(database)
+        with database.read() as connection:
+            wrong = trigger_findings(connection)
+    except BaseException:
+        database.close()
+        raise
+    if wrong and not database.read_only:
+        notices += [Message("store.trigger", {"name": n, "what": what}) for n, what in wrong]
+        database.close()
+        database = Database(path, key, mode="ro", busy=busy)
+    return Opened(database, key, facts, tuple(notices))
+
+
+def _mode(path: Path, read_only: bool) -> str:
+    if not read_only:
+        return "rw"
+    journal = path.with_name(path.name + "-wal")
+    folder_closed = not place.can_write(path) and not journal.exists()
+    return "immutable" if folder_closed else "ro"
+
+
+def is_encrypted(path: Path) -> bool:
+    """Whether a store's file is encrypted: a plain one begins with the open format's mark."""
+    with path.open("rb") as file:
+        return file.read(len(_PLAIN_HEADER)) != _PLAIN_HEADER
+
+
+def data_key(path: Path, passphrase: str | None) -> bytes | None:
+    """The key of a store's file, or None for a plain one.
+
+    Raises:
+        StoreError: `store.not_a_store`, `store.needs_passphrase`, `key.*`.
+    """
+    envelope = keys.envelope_path(path)
+    if not is_encrypted(path):
+        return None
+    if not envelope.exists():
+        with path.open("rb") as file:
+            looks_random = len(set(file.read(4096))) > 200
+        raise store_error("key.envelope_missing" if looks_random else "store.not_a_store", path=path.name)
+    text = keys.read_envelope(envelope)
+    if passphrase is None:
+        raise store_error("store.needs_passphrase", path=path.name)
+    return keys.open_envelope(text, passphrase)
+
+
+def _checked(database: Database) -> dict[str, str]:
+    """The store's own facts, once its format is known to be ours."""
+    try:
+        with database.read() as connection:
+            if application_id(connection) != APPLICATION_ID:
+                raise store_error("store.not_a_store", path=database.path.name)
+            rows = connection.execute(sa.select(schema.store_facts.c.key, schema.store_facts.c.value))
+            facts: dict[str, str] = {str(k): str(v) for k, v in rows}
+    except StoreError as error:
+        if "no such table" in str(error):
+            raise store_error("store.not_a_store", path=database.path.name) from error
+        raise
+    _check_format(facts.get("format", ""), database.path)
+    return facts
+
+
+def _check_format(text: str, path: Path) -> None:
+    if not text.isdigit():
+        raise store_error("store.not_a_store", path=path.name)
+    if int(text) > schema.FORMAT:
+        raise store_error("store.newer", path=path.name, format=int(text), accepted=schema.FORMAT)
+    if int(text) < schema.FORMAT:
+        raise store_error("store.older", path=path.name, format=int(text), accepted=schema.FORMAT)

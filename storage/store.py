@@ -1,0 +1,342 @@
+"""The one door to the store. It returns frozen values, never rows; every change goes through the ledger.
+
+A store is safe to share between threads: writers take turns, readers see one consistent state each.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from types import TracebackType
+from typing import Self
+
+import sqlalchemy as sa
+
+from core.record.entries import Entry, NewEntry
+from core.record.episode import Episode, build_episode
+from core.record.instant import Instant
+from core.record.knowledge import standing
+from core.record.message import Message, refuse
+from core.record.samples import DeviceSamples
+from storage import documents, keys, opening, settings_kept
+from storage import episode_index as index
+from storage import reading_ledger as reading
+from storage import schema as s
+from storage.chain import GENESIS, last_batch
+from storage.changes import Changes, changes_between
+from storage.chunks import hour_blocks
+from storage.draft_batch import (
+    DraftBatch,
+    DraftChunk,
+    DraftDocument,
+    DraftEntry,
+    DraftEvent,
+    DraftPolicy,
+    Receipt,
+    SourceFacts,
+)
+from storage.engine import BUSY_SECONDS
+from storage.errors import StoreError, store_error
+from storage.ledger import append_batch
+from storage.rules import is_device_channel
+
+__all__ = ["Changes", "Receipt", "SourceFacts", "Store", "StoreError"]
+
+_ALL = 2**62
+
+
+@dataclass(frozen=True)
+class Store:
+    """An open store. Make one with `create` or `open`; close it, or use it as a context manager."""
+
+    path: Path
+    _opened: opening.Opened
+
+    @classmethod
+    def create(
+        cls, path: Path | str, *, passphrase: str | None = None, now: Instant, by: str = "",
+        imported: bool = False, cost: keys.Cost = keys.DEFAULT_COST,
+    ) -> Store:  # fmt: skip
+        """Make a new store. Without a passphrase it is plain. `imported` lets recording times of files stand.
+
+        Raises:
+            StoreError: `store.exists`, `store.no_folder`, `store.network_share`.
+            RecordError: `passphrase.too_short`.
+        """
+        facts = {"imported": "yes" if imported else "no", "created_at": str(now), "created_by": by}
+        return cls(Path(path), opening.create(Path(path), passphrase, facts, cost))
+
+    @classmethod
+    def open(
+        cls, path: Path | str, *, passphrase: str | None = None, read_only: bool = False,
+        busy_seconds: float = BUSY_SECONDS,
+    ) -> Store:  # fmt: skip
+        """Open a store, by passphrase or recovery code when it is encrypted.
+
+        Raises:
+            StoreError: it is missing, newer, damaged, busy, or the passphrase is wrong.
+        """
+        return cls(Path(path), opening.open_store(Path(path), passphrase, read_only, busy_seconds))
+
+    def close(self) -> None:
+        """Close the store; nothing waits to be saved."""
+        self._opened.database.close()
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(
+        self, kind: type[BaseException] | None, error: BaseException | None, trace: TracebackType | None
+    ) -> None:
+        self.close()
+
+    @property
+    def is_encrypted(self) -> bool:
+        """Whether the file is encrypted."""
+        return self._opened.key is not None
+
+    @property
+    def read_only(self) -> bool:
+        """Whether nothing can be written; `notices` say why where nobody asked for it."""
+        return self._opened.database.read_only
+
+    @property
+    def imported(self) -> bool:
+        """Whether recording times of files are honoured while it is empty."""
+        return self._opened.facts.get("imported") == "yes"
+
+    @property
+    def notices(self) -> tuple[Message, ...]:
+        """What a person should know of how it opened."""
+        return self._opened.notices
+
+    @property
+    def recovery_code(self) -> str | None:
+        """The recovery code, right after creation and never again."""
+        return self._opened.recovery_code
+
+    @property
+    def store_id(self) -> str:
+        """The store's own id."""
+        return self._opened.facts["store_id"]
+
+    # -- the head ------------------------------------------------------------------------------------
+
+    def head(self) -> int:
+        """The newest sequence; 0 in an empty store."""
+        return self._head()[0]
+
+    def head_hash(self) -> str:
+        """The chain's newest hash, 64 hex digits."""
+        return self._head()[1]
+
+    def printed_head(self) -> str:
+        """Sequence and the first 16 hex digits of the hash: what a print shows to prove the chain's tail."""
+        seq, digest = self._head()
+        return f"{seq} {digest[:16]}"
+
+    def _head(self) -> tuple[int, str]:
+        with self._opened.database.read() as connection:
+            last = last_batch(connection)
+        return (0, GENESIS) if last is None else (int(last["last_seq"]), str(last["hash"]))
+
+    def head_known_at(self, known_at: Instant) -> int:
+        """The largest sequence recorded by a moment; 0 when nothing had been."""
+        query = sa.select(sa.func.max(s.batch.c.last_seq)).where(s.batch.c.recorded_at <= known_at)
+        with self._opened.database.read() as connection:
+            return int(connection.execute(query).scalar() or 0)
+
+    def changes_since(self, seq: int) -> Changes:
+        """What was recorded after a sequence, by this process or another."""
+        with self._opened.database.read() as connection:
+            return changes_between(connection, seq)
+
+    # -- writing -------------------------------------------------------------------------------------
+
+    def append(
+        self, entries: Sequence[NewEntry], *, by: str, operation: str, now: Instant,
+        samples: Sequence[DeviceSamples] = (), source: SourceFacts | None = None,
+    ) -> Receipt:  # fmt: skip
+        """Add entries and device samples as one batch, whole or not at all.
+
+        Raises:
+            RecordError: an entry breaks a rule, or there is nothing to add.
+            StoreError: busy, full, read-only.
+        """
+        chunks = tuple(chunk for block in samples for chunk in encoded(block))
+        drafts = tuple(DraftEntry(e) for e in entries)
+        return self.append_drafts((DraftBatch(by, operation, drafts, chunks, source),), (now,))[0]
+
+    def append_drafts(self, drafts: Sequence[DraftBatch], times: Sequence[Instant]) -> list[Receipt]:
+        """Add batches in order in one transaction, each recorded at its time (never before the one before)."""
+        with self._opened.database.write() as connection:
+            receipts = []
+            for draft, now in zip(drafts, times, strict=True):
+                receipt = append_batch(connection, draft, now)
+                index.note_batch(connection, draft, receipt)
+                receipts.append(receipt)
+        return receipts
+
+    def record_event(self, event: str, *, person: str, now: Instant, detail: str = "") -> Receipt:
+        """Chain what a person did that is no entry: a sign-in, a print, an export."""
+        draft = DraftBatch(person, event, events=(DraftEvent(person, event, detail),))
+        return self.append_drafts((draft,), (now,))[0]
+
+    # -- reading -------------------------------------------------------------------------------------
+
+    def entries(self, episode: str, head: int | None = None) -> tuple[Entry, ...]:
+        """All entries that bear on an episode up to a sequence, in order. What stands: `knowledge.standing`."""
+        with self._opened.database.read() as connection:
+            return reading.episode_entries(connection, episode, _ALL if head is None else head)
+
+    def samples(
+        self, episode: str, head: int | None = None, channel: str | None = None
+    ) -> tuple[DeviceSamples, ...]:
+        """The device samples of an episode, one block per channel, with later blocks, masks and shifts applied."""
+        top = _ALL if head is None else head
+        with self._opened.database.read() as connection:
+            spans = reading.spans_in_force(reading.episode_entries(connection, episode, top))
+            return reading.episode_samples(connection, episode, top, spans, channel)
+
+    def episode(self, key: str, head: int | None = None) -> Episode:
+        """The episode as arrays, as known at a sequence."""
+        top = _ALL if head is None else head
+        with self._opened.database.read() as connection:
+            entries = reading.episode_entries(connection, key, top)
+            samples = reading.episode_samples(connection, key, top, reading.spans_in_force(entries))
+        return build_episode(key, standing(entries), samples)
+
+    def episode_keys(self, head: int | None = None) -> tuple[str, ...]:
+        """Every episode that had been recorded by a sequence, in order of first recording."""
+        with self._opened.database.read() as connection:
+            return index.episode_keys(connection, _ALL if head is None else head)
+
+    def open_episode_keys(self) -> tuple[str, ...]:
+        """The episodes with no end recorded, in order of first recording; quick in a store of any age."""
+        with self._opened.database.read() as connection:
+            return index.open_episode_keys(connection)
+
+    def known_entry_ids(self, ids: Sequence[str]) -> frozenset[str]:
+        """Those of `ids` that are entries of the store."""
+        from storage.ledger import replaced_entries
+
+        with self._opened.database.read() as connection:
+            return frozenset(replaced_entries(connection, ids))
+
+    # -- what is kept beside the entries ---------------------------------------------------------------
+
+    def layout(self, name: str) -> str | None:
+        """A layout's text, or None."""
+        return self.layouts().get(name)
+
+    def layouts(self) -> Mapping[str, str]:
+        """Every layout's text by name."""
+        with self._opened.database.read() as connection:
+            return settings_kept.layouts(connection)
+
+    def put_layout(self, name: str, text: str | None) -> None:
+        """Keep a layout, or forget it (None). Layouts are outside the ledger."""
+        with self._opened.database.write() as connection:
+            settings_kept.put_layout(connection, name, text)
+
+    def draft(self, name: str) -> str | None:
+        """What was being typed under a name, or None."""
+        return self.drafts().get(name)
+
+    def drafts(self) -> Mapping[str, str]:
+        """Every draft's text by name."""
+        with self._opened.database.read() as connection:
+            return settings_kept.drafts(connection)
+
+    def put_draft(self, name: str, text: str | None, now: Instant = 0) -> None:
+        """Keep what is being typed, or forget it (None). Drafts are outside the ledger, encrypted with it."""
+        with self._opened.database.write() as connection:
+            settings_kept.put_draft(connection, name, text, now)
+
+    def policy(self, head: int | None = None) -> tuple[str, str] | None:
+        """The (hash, text) of the policy in force at a sequence, or None while the store has none."""
+        with self._opened.database.read() as connection:
+            return documents.policy(connection, _ALL if head is None else head)
+
+    def put_policy(self, text: str, hash: str, by: str, now: Instant) -> Receipt:
+        """Put a policy in force."""
+        draft = DraftBatch(by, "policy", policies=(DraftPolicy(hash, text),))
+        return self.append_drafts((draft,), (now,))[0]
+
+    def put_document(self, kind: str, name: str, data: bytes, by: str, now: Instant) -> str:
+        """Keep a document as it is, in the chain; its id."""
+        doc = DraftDocument(kind, name, data)
+        self.append_drafts((DraftBatch(by, "document", documents=(doc,)),), (now,))
+        return doc.id
+
+    def documents(self) -> tuple[documents.DocumentFacts, ...]:
+        """What documents are kept, in order."""
+        with self._opened.database.read() as connection:
+            return documents.listed(connection)
+
+    def document(self, document_id: str) -> bytes:
+        """A document's bytes.
+
+        Raises:
+            StoreError: `document.unknown`, or `document.damaged` when they are not those that were kept.
+        """
+        with self._opened.database.read() as connection:
+            return documents.data(connection, document_id)
+
+    # -- care ----------------------------------------------------------------------------------------
+
+    def verify(self) -> tuple[Message, ...]:
+        """Check the store whole; one message per finding, none when all is well."""
+        from storage.verify import findings
+
+        return findings(self._opened.database, encrypted=self.is_encrypted)
+
+    def backup(self, path: Path | str) -> None:
+        """Write a backup, encrypted as the store is, while others go on working.
+
+        Raises:
+            StoreError: `store.exists`, `store.disk_full`.
+        """
+        from storage.backup import backup
+
+        backup(self.path, self._opened.key, Path(path))
+
+    @classmethod
+    def restore(cls, backup_path: Path | str, new_path: Path | str) -> None:
+        """Make a new store of a backup; an existing file is never overwritten.
+
+        Raises:
+            StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`.
+        """
+        from storage.backup import restore
+
+        restore(Path(backup_path), Path(new_path))
+
+    def change_passphrase(self, secret: str, new: str, cost: keys.Cost = keys.DEFAULT_COST) -> None:
+        """Give the store a new passphrase; `secret` is the old one or the recovery code.
+
+        Raises:
+            StoreError: `key.wrong_passphrase`, `store.not_encrypted`.
+        """
+        if not self.is_encrypted:
+            raise store_error("store.not_encrypted", path=self.path.name)
+        envelope = keys.envelope_path(self.path)
+        keys.write_envelope(envelope, keys.change_passphrase(keys.read_envelope(envelope), secret, new, cost))
+
+
+def encoded(block: DeviceSamples) -> tuple[DraftChunk, ...]:
+    """A block of device samples as chunks, one per hour.
+
+    Raises:
+        RecordError: `samples.*` when the channel is no device channel or times do not increase.
+    """
+    if not is_device_channel(block.channel):
+        raise refuse("entry.not_a_device_channel", channel=block.channel,
+                     accepted="a numeric device or vital channel")  # fmt: skip
+    if block.t.shape != block.v.shape or (block.t[1:] <= block.t[:-1]).any():
+        raise refuse("samples.not_increasing", channel=block.channel, accepted="strictly increasing times")
+    return tuple(
+        DraftChunk(block.episode, block.channel, block.source, made)
+        for made in hour_blocks(block.t, block.v, block.decimals)
+    )
