@@ -72,6 +72,8 @@ class Session:
     person: str = ""
     selection: str | None = None
     is_demo: bool = False
+    read_only: bool = False
+    layout_revision: int = 0
 
     def now(self) -> Instant:
         """The moment entries are recorded at: the real clock, or the pretended one."""
@@ -155,10 +157,6 @@ class SessionModel(QObject):
         """Show and read wall-clock times in a zone."""
         self._become(What.ZONE, zone=zone)
 
-    def layout_changed(self) -> None:
-        """Tell that panels or other layout were changed (they live outside the ledger)."""
-        self.changed.emit(Changed(frozenset({What.LAYOUT})))
-
     @Slot()
     def look_for_changes(self) -> None:
         """Ask for what was committed since the head that views have been told."""
@@ -182,16 +180,20 @@ class SessionModel(QObject):
 
     def _described(self, outcome: Outcome[store_operations.StoreFacts]) -> None:
         facts = outcome.value
-        self._session = replace(self._session, head=outcome.head, policy=facts.policy)
+        self._session = replace(self._session, head=outcome.head, policy=facts.policy,
+                                read_only=facts.read_only, layout_revision=facts.layout_revision)  # fmt: skip
         self.changed.emit(Changed(frozenset({What.STORE, What.POLICY, What.RECORD}), facts.episodes))
 
     def _found(self, outcome: Outcome[store_operations.Changes]) -> None:
-        if outcome.head <= self._session.head:
-            return
-        found = outcome.value
-        what = {What.RECORD}
+        found, known = outcome.value, self._session
+        what = {What.RECORD} if outcome.head > known.head else set()
         if found.policy is not None:
             what.add(What.POLICY)
-        self._session = replace(self._session, head=outcome.head,
-                                policy=found.policy or self._session.policy)  # fmt: skip
+        if found.layout_revision != known.layout_revision:
+            what.add(What.LAYOUT)
+        if not what:
+            return
+        self._session = replace(known, head=max(outcome.head, known.head),
+                                policy=found.policy or known.policy,
+                                layout_revision=found.layout_revision)  # fmt: skip
         self.changed.emit(Changed(frozenset(what), found.episodes))

@@ -1,4 +1,4 @@
-"""Operations on the store as a whole: what it is, what was committed since."""
+"""Operations on the store as a whole: what it is, what was committed since, whether it is sound."""
 
 from __future__ import annotations
 
@@ -6,8 +6,10 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
-from core.judgement.policy import Policy, read_policy, shipped_policy
+from app.operations.policy import in_force
+from core.judgement.policy import Policy
 from core.record.instant import Instant
+from core.record.message import Message
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -15,10 +17,18 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, slots=True)
 class StoreFacts:
-    """What a view must know of a store before it shows anything."""
+    """What a view must know of a store before it shows anything.
+
+    `printed_head` is the sequence and the first 16 hex digits of the chain's newest hash.
+    """
 
     episodes: frozenset[str]
     policy: Policy
+    read_only: bool
+    encrypted: bool
+    notices: tuple[Message, ...]
+    printed_head: str
+    layout_revision: int = 0
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,22 +37,26 @@ class Changes:
 
     episodes: frozenset[str]
     policy: Policy | None = None
+    layout_revision: int = 0
 
 
 def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[StoreFacts]:
-    """The store's episodes and the policy in force."""
+    """The store's episodes, its state, and the policy in force."""
     head = store.head()
-    return Outcome(StoreFacts(frozenset(store.episode_keys()), policy_in_force(store)), head)
+    facts = StoreFacts(
+        frozenset(store.episode_keys()), in_force(store), store.read_only, store.is_encrypted,
+        tuple(store.notices), store.printed_head(), store.changes_since(head).layout_revision,
+    )  # fmt: skip
+    return Outcome(facts, head)
 
 
 def changes(store: Store, who: str, now: Instant, request: int) -> Outcome[Changes]:
     """What was committed after the sequence `request`."""
     found = store.changes_since(request)
-    policy = policy_in_force(store) if found.policies else None
-    return Outcome(Changes(frozenset(found.episodes), policy), found.head)
+    policy = in_force(store) if found.policy_changed else None
+    return Outcome(Changes(found.episodes, policy, found.layout_revision), found.head)
 
 
-def policy_in_force(store: Store) -> Policy:
-    """The policy last put in force in the store; the shipped one before that."""
-    text = store.policy_text()
-    return shipped_policy() if text is None else read_policy(text)
+def verify(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[Message, ...]]:
+    """Check the store whole: pages, chain, triggers, domain rules, derived tables. Empty when all is well."""
+    return Outcome(tuple(store.verify()), store.head())

@@ -33,6 +33,7 @@ class Heads:
 
     def __init__(self) -> None:
         self.head = 3
+        self.revision = 0
 
     def close(self) -> None:
         pass
@@ -48,10 +49,14 @@ def model(store: Heads, monkeypatch: pytest.MonkeyPatch, qtbot: Any) -> Iterator
     def describe(s: Any, who: str, now: int, request: Any) -> Outcome[Any]:
         from core.judgement.policy import shipped_policy
 
-        return Outcome(store_operations.StoreFacts(frozenset({"a", "b"}), shipped_policy()), s.head)
+        facts = store_operations.StoreFacts(
+            frozenset({"a", "b"}), shipped_policy(), read_only=True, encrypted=False, notices=(), printed_head="3 ab"
+        )
+        return Outcome(facts, s.head)
 
     def changes(s: Any, who: str, now: int, request: int) -> Outcome[Any]:
-        return Outcome(store_operations.Changes(frozenset({"b"} if s.head > request else ())), s.head)
+        episodes = frozenset({"b"} if s.head > request else ())
+        return Outcome(store_operations.Changes(episodes, layout_revision=s.revision), s.head)
 
     monkeypatch.setattr(store_operations, "describe", describe)
     monkeypatch.setattr(store_operations, "changes", changes)
@@ -69,6 +74,7 @@ def test_start_tells_the_store_and_its_head(model: SessionModel, qtbot: Any) -> 
     assert change.touches(What.RECORD)
     assert change.episodes == {"a", "b"}
     assert model.session.head == 3
+    assert model.session.read_only
 
 
 def test_a_foreign_commit_is_told_once(model: SessionModel, store: Heads, qtbot: Any) -> None:
@@ -82,6 +88,15 @@ def test_a_foreign_commit_is_told_once(model: SessionModel, store: Heads, qtbot:
     with qtbot.assertNotEmitted(model.changed, wait=50):
         model.look_for_changes()
         qtbot.waitUntil(lambda: not model.runner.is_busy)
+
+
+def test_a_kept_layout_is_told(model: SessionModel, store: Heads, qtbot: Any) -> None:
+    with qtbot.waitSignal(model.changed):
+        model.start()
+    store.revision = 1
+    with qtbot.waitSignal(model.changed) as told:
+        model.look_for_changes()
+    assert told.args[0].what == {What.LAYOUT}
 
 
 def test_an_own_commit_arrives_by_the_same_way(model: SessionModel, store: Heads, qtbot: Any) -> None:

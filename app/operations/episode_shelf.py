@@ -1,0 +1,57 @@
+"""Episodes that were built already, kept while nothing new was recorded for them."""
+
+from __future__ import annotations
+
+from collections import OrderedDict
+from typing import TYPE_CHECKING
+
+from core.record.episode import Episode
+
+if TYPE_CHECKING:
+    from storage.store import Store
+
+_MOST = 200
+"""Some 0.5 MB each for three days of one-minute device data."""
+
+
+class EpisodeShelf:
+    """The episodes of one store by key, as known at its head."""
+
+    def __init__(self) -> None:
+        self._head = -1
+        self._kept: OrderedDict[str, Episode] = OrderedDict()
+
+    def get(self, store: Store, key: str) -> Episode:
+        """The episode as the store holds it now; built anew only when it changed."""
+        self._forget_changed(store)
+        found = self._kept.get(key)
+        if found is None:
+            found = store.episode(key, self._head)
+            self._kept[key] = found
+            if len(self._kept) > _MOST:
+                self._kept.popitem(last=False)
+        self._kept.move_to_end(key)
+        return found
+
+    def _forget_changed(self, store: Store) -> None:
+        if self._head < 0:
+            self._head = store.head()
+            return
+        news = store.changes_since(self._head)
+        for key in news.episodes:
+            self._kept.pop(key, None)
+        self._head = news.head
+
+
+_shelves: OrderedDict[tuple[str, str], EpisodeShelf] = OrderedDict()
+_MOST_STORES = 2
+
+
+def shelf_of(store: Store) -> EpisodeShelf:
+    """The shelf of a store; those of stores opened before are let go."""
+    name = (store.store_id, str(store.path))
+    shelf = _shelves.setdefault(name, EpisodeShelf())
+    _shelves.move_to_end(name)
+    if len(_shelves) > _MOST_STORES:
+        _shelves.popitem(last=False)
+    return shelf

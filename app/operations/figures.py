@@ -1,0 +1,116 @@
+"""Operations that compute figures: for one episode, for the ward."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from app.operations.episode import load
+from app.operations.outcome import Outcome, report
+from app.operations.policy import in_force
+from core.figures.episode_figures import episode_figures
+from core.judgement.shapes import EpisodeFigures
+from core.record.episode import Episode
+from core.record.instant import HOUR, Instant
+
+if TYPE_CHECKING:
+    from storage.store import Store
+
+RECENTLY_ENDED = 24 * HOUR
+"""Episodes that ended this long before the moment still stand on the ward."""
+
+
+@dataclass(frozen=True, slots=True)
+class EpisodeRequest:
+    """One episode as of a moment, as known at a moment (None: all that is recorded)."""
+
+    episode: str
+    as_of: Instant
+    as_known_at: Instant | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class WardRequest:
+    """The ward as of a moment. `episodes` None: every one that is open or ended recently.
+
+    `everything`: closed ones of any age too.
+    """
+
+    as_of: Instant
+    as_known_at: Instant | None = None
+    episodes: tuple[str, ...] | None = None
+    everything: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class EpisodeAnswer:
+    """The record of an episode as known, and its figures."""
+
+    record: Episode
+    figures: EpisodeFigures
+
+
+@dataclass(frozen=True, slots=True)
+class WardAnswer:
+    """The episodes of a ward in order of concern, whom to see first foremost."""
+
+    as_of: Instant
+    episodes: tuple[EpisodeAnswer, ...]
+
+    @property
+    def figures(self) -> tuple[EpisodeFigures, ...]:
+        """The figures alone."""
+        return tuple(e.figures for e in self.episodes)
+
+
+def of_episode(store: Store, who: str, now: Instant, request: EpisodeRequest) -> Outcome[EpisodeAnswer]:
+    """The figures of one episode.
+
+    Raises:
+        RecordError: `episode.unknown`.
+    """
+    record = load(store, request.episode, request.as_known_at)
+    policy = in_force(store, _head_for(store, request.as_known_at))
+    made = episode_figures(record, request.as_of, policy)
+    return Outcome(EpisodeAnswer(record, made), store.head())
+
+
+def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outcome[WardAnswer]:
+    """The figures of the ward's episodes in order of concern. Reports progress by episode."""
+    head = store.head()
+    policy = in_force(store, _head_for(store, request.as_known_at))
+    keys = _keys(store, request)
+    answers = []
+    for number, key in enumerate(keys):
+        report(number, len(keys))
+        record = load(store, key, request.as_known_at)
+        if _stands(record, request):
+            answers.append(EpisodeAnswer(record, episode_figures(record, request.as_of, policy)))
+    answers.sort(key=lambda a: concern_order(a.figures))
+    return Outcome(WardAnswer(request.as_of, tuple(answers)), head)
+
+
+def concern_order(figures: EpisodeFigures) -> tuple[int, float, str]:
+    """The order in which episodes are to be seen: rank, then order inside it, then label."""
+    return (figures.concern.rank, figures.concern.order, figures.label)
+
+
+def _head_for(store: Store, known_at: Instant | None) -> int | None:
+    return None if known_at is None else store.head_known_at(known_at)
+
+
+def _keys(store: Store, request: WardRequest) -> Sequence[str]:
+    if request.episodes is not None:
+        return request.episodes
+    return store.episode_keys(_head_for(store, request.as_known_at))
+
+
+def _stands(record: Episode, request: WardRequest) -> bool:
+    """Whether an episode had begun by the moment and had not ended long before it."""
+    if request.episodes is not None:
+        return True
+    if record.first_at is None or record.first_at > request.as_of:
+        return False
+    ended = record.latest("ended_at")
+    return request.everything or ended is None or ended > request.as_of - RECENTLY_ENDED

@@ -1,0 +1,168 @@
+"""Recording, correcting, withdrawing, moving and undoing through a real store."""
+
+from collections.abc import Iterator
+from pathlib import Path
+
+import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
+
+from app.operations import entry, episode
+from core.record.instant import HOUR, MINUTE, parse
+from core.record.message import RecordError
+from storage.store import Store
+
+NOW = parse("2026-03-28T02:30:00Z")
+
+
+@pytest.fixture
+def store(tmp_path: Path) -> Iterator[Store]:
+    with Store.create(tmp_path / "ward.luff", now=NOW - 8 * HOUR) as made:
+        for key in ("A", "B"):
+            episode.begin(made, "AB", NOW - 8 * HOUR, episode.BeginRequest(key, {"label": f"Bed {key}"}))
+        yield made
+
+
+def line(text: str, key: str = "A", **more: bool) -> entry.LineRequest:
+    return entry.LineRequest(key, text, "UTC", **more)
+
+
+def log(store: Store, text: str, **more: bool) -> entry.Recorded:
+    return entry.log_line(store, "AB", NOW, line(text, **more)).value
+
+
+def test_a_line_is_previewed_without_being_recorded(store: Store) -> None:
+    head = store.head()
+    shown = entry.preview(store, "AB", NOW, line("02:10 ps 10 epap 5")).value
+    assert (shown.episode, shown.label) == ("A", "Bed A")
+    assert shown.line.support_after == 10
+    assert store.head() == head
+
+
+def test_a_line_is_recorded_with_who_and_when(store: Store) -> None:
+    outcome = entry.log_line(store, "AB", NOW, line("02:10 16/6 35"))
+    assert outcome.head == store.head()
+    made = store.episode("A")
+    assert made.latest("ipap") == 16
+    assert made.latest("fio2") == 0.35
+    assert {s.entry.by for s in made.standing} == {"AB"}
+    assert int(made.number("ipap").t[0]) == NOW - 20 * MINUTE
+
+
+def test_an_unknown_episode_is_refused_unless_it_is_meant_to_begin(store: Store) -> None:
+    with pytest.raises(RecordError) as refused:
+        entry.log_line(store, "AB", NOW, line("rr 20", key="C"))
+    assert refused.value.message.key == "episode.unknown"
+    assert entry.log_line(store, "AB", NOW, line("rr 20", key="C", new=True)).value.episode == "C"
+
+
+@pytest.mark.parametrize("key", ["", "two words", "x" * 61, "a\tb"])
+def test_a_key_that_cannot_be_typed_again_is_refused(store: Store, key: str) -> None:
+    with pytest.raises(RecordError) as refused:
+        entry.log_line(store, "AB", NOW, line("rr 20", key=key, new=True))
+    assert refused.value.message.key == "episode.bad_key"
+
+
+def test_a_soft_limit_is_asked_about(store: Store) -> None:
+    head = store.head()
+    with pytest.raises(RecordError) as refused:
+        log(store, "rr 48")
+    assert refused.value.message.key == "line.unconfirmed"
+    assert store.head() == head
+    log(store, "rr 48", confirmed=True)
+    assert not store.episode("A").number("rr").doubt.any()
+
+
+def test_a_gas_that_does_not_agree_with_itself_is_asked_about(store: Store) -> None:
+    with pytest.raises(RecordError) as refused:
+        log(store, "ph 7.25 paco2 60 hco3 36")
+    assert refused.value.message.values["first"] == "gas.inconsistent"
+
+
+def test_a_moment_to_come_is_refused(store: Store) -> None:
+    with pytest.raises(RecordError) as refused:
+        entry.check_not_future(NOW + 6 * MINUTE, NOW)
+    assert refused.value.message.key == "entry.in_future"
+    entry.check_not_future(NOW + 5 * MINUTE, NOW)
+
+
+def test_correction_supersedes_and_stays_visible(store: Store) -> None:
+    made = log(store, "ph 7.31")
+    entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "misread", "7,13"))
+    (gas,) = store.episode("A").gases
+    assert (gas.ph, gas.corrected) == (7.13, True)
+    assert gas.text("ph") == "7.13"
+
+
+def test_correction_of_the_time_alone_keeps_the_value(store: Store) -> None:
+    made = log(store, "rr 30")
+    entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "late", at=NOW - HOUR))
+    series = store.episode("A").number("rr")
+    assert (int(series.t[0]), float(series.v[0])) == (NOW - HOUR, 30.0)
+
+
+@pytest.mark.parametrize("reason", ["", "   "])
+def test_a_correction_needs_its_reason(store: Store, reason: str) -> None:
+    made = log(store, "rr 30")
+    with pytest.raises(RecordError) as refused:
+        entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], reason, "31"))
+    assert refused.value.message.key == "correction.no_reason"
+
+
+def test_what_was_superseded_cannot_be_corrected_again(store: Store) -> None:
+    made = log(store, "rr 30")
+    entry.withdraw(store, "CD", NOW, entry.WithdrawalRequest("A", made.ids[0], "wrong bed"))
+    with pytest.raises(RecordError) as refused:
+        entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "again", "31"))
+    assert refused.value.message.key == "correction.superseded"
+
+
+def test_an_entry_moves_to_the_episode_it_belongs_to(store: Store) -> None:
+    made = log(store, "rr 30")
+    moved = entry.move(store, "CD", NOW, entry.MoveRequest("A", made.ids[0], "B", "wrong bed")).value
+    assert store.episode("A").latest("rr") is None
+    assert store.episode("B").latest("rr") == 30
+    entry.undo(store, "CD", NOW, entry.UndoRequest("B", moved.ids))
+    assert store.episode("A").latest("rr") == 30
+    assert store.episode("B").latest("rr") is None
+
+
+def test_undo_refuses_what_somebody_changed_since(store: Store) -> None:
+    made = log(store, "rr 30")
+    entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "recount", "28"))
+    with pytest.raises(RecordError) as refused:
+        entry.undo(store, "AB", NOW, entry.UndoRequest("A", made.ids))
+    assert refused.value.message.key == "undo.superseded"
+    assert store.episode("A").latest("rr") == 28
+
+
+STEPS = st.lists(st.sampled_from(["log", "correct", "withdraw", "undo"]), min_size=1, max_size=7)
+
+
+@given(STEPS)
+@settings(max_examples=25, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+def test_undo_brings_back_what_stood_before(tmp_path_factory: pytest.TempPathFactory, steps: list[str]) -> None:
+    """Whatever was done, its undo leaves the value that stood before it; undoing the undo brings it again."""
+    with Store.create(tmp_path_factory.mktemp("u") / "ward.luff", now=NOW - HOUR) as store:
+        episode.begin(store, "AB", NOW - HOUR, episode.BeginRequest("A"))
+        last = log(store, "rr 20")
+        for n, step in enumerate(steps):
+            before = store.episode("A").latest("rr")
+            last = _do(store, step, last, n, standing=before is not None)
+            after = store.episode("A").latest("rr")
+            taken_back = entry.undo(store, "AB", NOW, entry.UndoRequest("A", last.ids)).value
+            assert store.episode("A").latest("rr") == before
+            last = entry.undo(store, "AB", NOW, entry.UndoRequest("A", taken_back.ids)).value
+            assert store.episode("A").latest("rr") == after
+        assert store.verify() == ()
+
+
+def _do(store: Store, step: str, last: entry.Recorded, n: int, *, standing: bool) -> entry.Recorded:
+    if step == "undo":
+        return entry.undo(store, "AB", NOW, entry.UndoRequest("A", last.ids)).value
+    if step == "log" or not standing:
+        return log(store, f"rr {20 + n}")
+    current = store.episode("A").standing[-1].entry.id
+    if step == "correct":
+        return entry.correct(store, "AB", NOW, entry.CorrectionRequest("A", current, "x", str(25 + n))).value
+    return entry.withdraw(store, "AB", NOW, entry.WithdrawalRequest("A", current, "x")).value
