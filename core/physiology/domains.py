@@ -72,6 +72,7 @@ DOMAINS: Mapping[str, Domain] = MappingProxyType(
         "barometric": Domain("mmHg", 350.0, 900.0),
         "rq": Domain("", 0.6, 1.3),
         "hydrogen_ion": Domain("nmol/L", 9.99, 317.0),
+        "store": Domain("mL/kg/mmHg", 0.1, 10.0),
         "expected_gain": Domain("mmol/L/mmHg", 0.0, 1.0),
         "paw_mean": Domain("cmH2O", 0.0, 60.0),
         "pf": Domain("mmHg", 1.0, 5000.0, missing="undefined.pf_unknown"),

@@ -8,8 +8,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 Values = NDArray[np.float64]
-N = TypeVar("N", float, Values)
-"""A scalar or an array of float64; one call takes all of one sort, or scalars with arrays to broadcast."""
+N = TypeVar("N", float, Values, Values | float)
+"""A float or an array of float64. Mixed calls broadcast; to type them, declare the scalar `Values | float`."""
 
 
 def power_of_ten(x: N) -> N:

@@ -107,7 +107,7 @@ class Plan:
         return None if self.result.holds(found) else self._outside(self.result, "result", found)
 
     def _outside(self, domain: Domain, name: str, value: float) -> Message:
-        key = domain.too_low if value < domain.low else domain.too_high
+        key = domain.too_high if value > domain.high else domain.too_low  # NaN: what the low end says
         low, high = float(f"{domain.low:.7g}"), float(f"{domain.high:.7g}")
         values: dict[str, Value] = {"figure": self.name, "input": name, "value": value}
         return Message(key, values | {"low": low, "high": high, "unit": domain.unit})
