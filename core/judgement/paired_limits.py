@@ -31,3 +31,12 @@ def below(mmhg: float, limit: Limit) -> bool:
     True
     """
     return bool(below_pressure_limit(mmhg, _kpa(limit)))
+
+
+def wider_mmHg(limit: Limit) -> float:
+    """The wider of both printed forms of a difference, in mmHg: a change must pass both to count.
+
+    >>> round(wider_mmHg(Limit(3.3, "", "computed here", 0.44)), 4)
+    3.3003
+    """
+    return limit.value if limit.kpa is None else max(limit.value, limit.kpa * MMHG_PER_KPA)

@@ -1,0 +1,286 @@
+"""Did it work? Every anchor judged by the gases that can judge it (rules of judgement 1 to 3).
+
+A gas counts once for a headline: for the latest anchor before it. Earlier anchors list it as not attributable.
+Each gas is judged twice: against its anchor's baseline, and against the baseline of the start.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from functools import cached_property
+from math import isnan
+
+from core.judgement import arms
+from core.judgement import response_reasons as why
+from core.judgement.anchors import Anchor
+from core.judgement.arms import Oxygenation
+from core.judgement.context import Context, Target
+from core.judgement.policy import Policy
+from core.judgement.response_baseline import (
+    VENOUS,
+    Baseline,
+    baseline,
+    minute,
+    of_site,
+    timing,
+    venous_baseline,
+)
+from core.judgement.response_headline import Headline, headline
+from core.judgement.response_since import StartBaseline, difference, since_start
+from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure, SinceStart, Step
+from core.judgement.vitals_near import Found, VitalsNear
+from core.record.instant import MINUTE, Instant
+from core.record.message import Message
+from core.record.settings import ROOM_AIR
+
+
+def judge_responses(ctx: Context, anchors: tuple[Anchor, ...]) -> tuple[ResponseFigure, ...]:
+    """The response to every anchor, by time. Reads `ctx.gases`, vitals, settings and support."""
+    judge = _Judge(ctx, anchors)
+    return tuple(judge.response(i) for i in range(len(anchors)))
+
+
+@dataclass(frozen=True)
+class _Judge:
+    ctx: Context
+    anchors: tuple[Anchor, ...]
+
+    @cached_property
+    def vitals(self) -> VitalsNear:
+        return VitalsNear(self.ctx.episode, self.ctx.policy)
+
+    @cached_property
+    def arterial(self) -> tuple[GasFigure, ...]:
+        return of_site(self.ctx.gases, venous=False)
+
+    @cached_property
+    def venous(self) -> tuple[GasFigure, ...]:
+        return of_site(self.ctx.gases, venous=True)
+
+    @cached_property
+    def target(self) -> Target:
+        return self.ctx.target
+
+    @cached_property
+    def at_risk(self) -> bool:
+        return self.ctx.hypercapnic_risk
+
+    @cached_property
+    def since(self) -> dict[Instant, SinceStart]:
+        """Every arterial or capillary gas on support after the start, against the start."""
+        if not self.anchors:
+            return {}
+        first = self.anchors[0]
+        start = self._start_baseline(first)
+        found: dict[Instant, SinceStart] = {}
+        earlier: list[GasFigure] = []
+        for gas in self.arterial:
+            if gas.off_support or (minute(gas.at) <= minute(first.first_at) and not first.running_before):
+                continue
+            seen = self._seen(first.first_at, start.gas, gas, first.first_at, gas.at + 30 * MINUTE)
+            found[gas.at] = since_start(start, gas, earlier, seen, self.ctx.policy)
+            earlier.append(gas)
+        return found
+
+    def _start_baseline(self, first: Anchor) -> StartBaseline:
+        if first.running_before:
+            reference = next((g for g in self.arterial if not g.off_support), None)
+            return StartBaseline(reference, reference=True)
+        found = baseline(self.ctx, first, self.arterial, self._until(0))
+        return StartBaseline(found.gas, found.why)
+
+    def _next(self, index: int) -> Anchor | None:
+        return next((a for a in self.anchors[index + 1 :] if a.judges), None)
+
+    def _until(self, index: int) -> Instant | None:
+        later = self._next(index)
+        return later.first_at if later is not None else None
+
+    def response(self, index: int) -> ResponseFigure:
+        anchor, until = self.anchors[index], self._until(index)
+        base = baseline(self.ctx, anchor, self.arterial, until) if anchor.judges else Baseline(None)
+        judged = self._gases(index, base, until) if anchor.judges else ()
+        said = headline(self.ctx, anchor, base, judged, until) if anchor.judges else _no_effect(anchor)
+        if said.headline == arms.NOT_YET and self._oxygen_by_spo2_alone(anchor):
+            said = self._by_spo2(anchor, until) or said
+        rules, gas = self.ctx.policy.response, base.gas
+        return ResponseFigure(
+            anchor_at=anchor.at, anchor=anchor.kind, first_at=anchor.first_at, steps=anchor.steps,
+            effects=anchor.effects,
+            window_from=anchor.at + int(rules.window_from_min.value * MINUTE),
+            window_to=anchor.at + int(rules.window_to_min.value * MINUTE),
+            baseline_at=gas.at if gas else None, baseline_ph=gas.ph if gas else None,
+            baseline_paco2_mmHg=gas.paco2_mmHg if gas else None, baseline_pf_mmHg=gas.pf_mmHg if gas else None,
+            baseline_early=base.early,
+            co2_arm_active=gas is not None and arms.acute_hypercapnia(gas, self.ctx.policy),
+            oxygen_arm_active=gas is not None and arms.hypoxaemia(gas, self.ctx.policy),
+            headline=said.headline, headline_gas_at=said.gas_at, state=said.state, why=said.why, gases=judged,
+            superseded_at=until,
+        )  # fmt: skip
+
+    def _gases(self, index: int, base: Baseline, until: Instant | None) -> tuple[JudgedGas, ...]:
+        anchor = self.anchors[index]
+        limit = minute(anchor.at) + self.ctx.policy.response.window_to_min.value
+        out: list[JudgedGas] = []
+        for gas in self.ctx.gases:
+            m = minute(gas.at)
+            if m <= minute(anchor.first_at) and not (anchor.running_before and m == minute(anchor.first_at)):
+                continue
+            if until is None or m <= minute(until):
+                out.append(self._judged(index, base, gas, until))
+            elif m <= limit:
+                out.append(self._not_attributable(index, base, gas))
+            else:
+                break
+        return tuple(out)
+
+    def _judged(self, index: int, base: Baseline, gas: GasFigure, until: Instant | None) -> JudgedGas:
+        anchor = self.anchors[index]
+        minutes, when = timing(self.ctx, anchor, gas)
+        plain = JudgedGas(gas.at, minutes, when, state=gas.state,
+                          since_start=self.since.get(gas.at, _NOT_COMPARED))  # fmt: skip
+        if gas.site == VENOUS:
+            return self._venous(anchor, gas, plain)
+        reason = _unjudged(base, gas)
+        if reason:
+            return replace(plain, why=(*reason, *why.doubts(base.gas, gas)))
+        assert base.gas is not None
+        high = min(gas.at + 30 * MINUTE, until if until is not None else self.ctx.as_of)
+        seen = self._seen(anchor.first_at, base.gas, gas, anchor.at if gas.at > anchor.at else anchor.first_at, high)
+        co2 = arms.co2_arm(base.gas, gas, self.ctx.policy)
+        oxygen = arms.oxygen_arm(base.gas, gas, seen, self.ctx.policy, co2, by_spo2=anchor.oxygen_only)
+        active = arms.acute_hypercapnia(base.gas, self.ctx.policy) or (anchor.oxygen_only and self.at_risk)
+        cautions = [why.about_gas("early", gas)] if when == "early" else []
+        lost = plain.since_start.reasons.get("gain_lost")
+        cautions += [lost] if lost is not None else []
+        cautions += [why.about_gas("capillary", gas)] if gas.site == "capillary" else []
+        also = self._also_changed(index, base.gas.at, gas.at)
+        cautions += [Message("response.also_changed", {"steps": len(also), "last_at": also[-1].at})] if also else []
+        return replace(
+            _with_deltas(plain, self.ctx.policy, base.gas, gas),
+            co2_arm=co2.verdict, oxygen_arm=oxygen.verdict,
+            verdict=arms.verdict(co2, oxygen, active, anchor.oxygen_only), also_changed=also,
+            why=(*co2.why, *oxygen.why, *([base.why] if base.early and base.why else []), *cautions,
+                 *why.doubts(base.gas, gas)),
+        )  # fmt: skip
+
+    def _not_attributable(self, index: int, base: Baseline, gas: GasFigure) -> JudgedGas:
+        """A gas after a later anchor: listed, with what changed in between, never judged for this one."""
+        minutes, when = timing(self.ctx, self.anchors[index], gas)
+        also = self._also_changed(index, self.anchors[index].at, gas.at)
+        reason = Message("response.not_attributable", {"gas_at": gas.at, "steps": len(also)})
+        listed = JudgedGas(
+            gas.at, minutes, when, state=gas.state, attributable=False, also_changed=also, why=(reason,),
+            since_start=self.since.get(gas.at, _NOT_COMPARED),
+        )  # fmt: skip
+        if base.gas is None or gas.site == VENOUS or gas.off_support:
+            return listed
+        return _with_deltas(listed, self.ctx.policy, base.gas, gas)
+
+    def _venous(self, anchor: Anchor, gas: GasFigure, plain: JudgedGas) -> JudgedGas:
+        """Compared with venous only, and never a verdict."""
+        said = [why.about_gas("venous_only", gas)]
+        if gas.ph is not None and gas.ph < self.ctx.policy.state.severe_below_ph.value:
+            said.append(Message("response.confirm_arterially", {"gas_at": gas.at, "ph": gas.ph}))
+        base = venous_baseline(self.ctx, anchor, self.venous)
+        if base is None:
+            return replace(plain, why=tuple(said))
+        co2 = arms.co2_arm(base, gas, self.ctx.policy)
+        compared = _with_deltas(plain, self.ctx.policy, base, gas)
+        return replace(compared, co2_arm=co2.verdict, why=(*said, *co2.why))
+
+    def _also_changed(self, index: int, after: Instant, before: Instant) -> tuple[Step, ...]:
+        """The steps of other anchors between two gases: what else could have made the difference."""
+        return tuple(
+            step
+            for i, a in enumerate(self.anchors)
+            if i != index and a.judges and minute(after) <= minute(a.at) < minute(before)
+            and not (a.kind == "start" and a.running_before)
+            for step in a.steps
+            if minute(after) <= minute(step.at) < minute(before)
+        )  # fmt: skip
+
+    def _seen(
+        self, first_at: Instant, base: GasFigure | None, gas: GasFigure, low: Instant, high: Instant
+    ) -> Oxygenation:
+        high = min(high, self.ctx.as_of)
+        rate = self.vitals.rate
+        rr_before = rate(base.at, 0, max(first_at, base.at)) if base is not None else None
+        before_at = first_at if base is None or base.at <= first_at else base.at
+        return Oxygenation(
+            spo2_before=self.vitals.spo2(before_at, 0, before_at),
+            spo2_after=self.vitals.spo2(gas.at, low, high),
+            rr_before=rr_before or rate(first_at, 0, first_at),
+            rr_after=rate(gas.at, low, high),
+            low=self.target.low, high=self.target.high,
+            given_before=self._oxygen_given(first_at - 1), given_after=self._oxygen_given(gas.at),
+        )  # fmt: skip
+
+    def _oxygen_given(self, at: Instant) -> bool:
+        fio2, flow = self.ctx.settings.fio2.at(at), self.ctx.settings.o2_flow.at(at)
+        return fio2 > ROOM_AIR if not isnan(fio2) else flow > 0
+
+    def _oxygen_by_spo2_alone(self, anchor: Anchor) -> bool:
+        return anchor.oxygen_only and not self.at_risk
+
+    def _by_spo2(self, anchor: Anchor, until: Instant | None) -> Headline | None:
+        """A change of oxygen without a gas, in a patient not at hypercapnic risk: SpO2 in the window answers."""
+        rules = self.ctx.policy.response
+        opens = anchor.at + int(rules.window_from_min.value * MINUTE)
+        closes = min(anchor.at + int(rules.window_to_min.value * MINUTE), self.ctx.as_of,
+                     until if until is not None else self.ctx.as_of)  # fmt: skip
+        if closes < opens:
+            return None
+        after = _last(self.vitals, closes, opens)
+        seen = Oxygenation(
+            self.vitals.spo2(anchor.first_at, 0, anchor.first_at), after, None, None, self.target.low,
+            self.target.high, self._oxygen_given(anchor.first_at - 1), self._oxygen_given(anchor.at),
+        )  # fmt: skip
+        arm = arms.spo2_arm(seen, self.ctx.policy)
+        if arm.verdict is None:
+            return None
+        return Headline(arm.verdict, None, None, (Message("response.by_spo2_alone", {}), *arm.why))
+
+
+def _last(vitals: VitalsNear, closes: Instant, opens: Instant) -> Found | None:
+    """The newest SpO2 in a window, looked for from its end backwards."""
+    at = closes
+    while at >= opens:
+        found = vitals.spo2(at, opens - 1, closes)
+        if found is not None:
+            return found
+        at -= 30 * MINUTE
+    return None
+
+
+_NOT_COMPARED = SinceStart(reasons={"verdict": Message("response.not_compared_with_start", {})})
+
+
+def _unjudged(base: Baseline, gas: GasFigure) -> tuple[Message, ...]:
+    """Why a gas that could count does not judge the anchor; empty where it does."""
+    if gas.off_support:
+        said = [why.about_gas("off_support", gas)]
+        if gas.state in ("severe", "acidotic"):
+            said.append(Message("response.acidosis_off_support", {"gas_at": gas.at, "ph": gas.ph}))
+        return tuple(said)
+    if base.gas is None:
+        return (base.why,) if base.why is not None else ()
+    if gas.at <= base.gas.at:
+        key = "serves_as_baseline" if gas is base.gas else "before_baseline"
+        return (why.about_gas(key, gas),)
+    return ()
+
+
+def _with_deltas(judged: JudgedGas, policy: Policy, base: GasFigure, gas: GasFigure) -> JudgedGas:
+    apart = arms.pf_comparable(base, gas, policy)
+    return replace(
+        judged,
+        delta_ph=difference(base.ph, gas.ph),
+        delta_paco2_mmHg=difference(base.paco2_mmHg, gas.paco2_mmHg),
+        delta_pf_mmHg=None if apart else difference(base.pf_mmHg, gas.pf_mmHg),
+    )
+
+
+def _no_effect(anchor: Anchor) -> Headline:
+    channels = ", ".join(sorted({s.channel for s in anchor.steps}))
+    return Headline(arms.NOT_JUDGED, None, None, (Message("response.no_effect", {"channels": channels}),))

@@ -1,0 +1,83 @@
+"""Why a response reads as it does: one message per reason, each with the values its sentence needs.
+
+Pressures in mmHg, rates per minute, SpO2 in %, FiO2 as a fraction, instants in microseconds (names end in `_at`).
+"""
+
+from __future__ import annotations
+
+from core.judgement.shapes import GasFigure
+from core.record.instant import Instant
+from core.record.message import Message, Value
+
+Values = dict[str, Value]
+
+
+def compared(quantity: str, before: float, after: float, noise: float, sign: int) -> Message:
+    """What was compared, by how much, against which noise. `quantity`: ph, paco2, pf, rr, spo2."""
+    beyond = {1: "up", -1: "down", 0: "inside noise"}[sign]
+    change = round(after - before, 6)
+    values: Values = {"quantity": quantity, "before": before, "after": after, "change": change, "noise": noise,
+              "direction": beyond}  # fmt: skip
+    return Message("response.compared", values)
+
+
+def missing(quantity: str, side: str) -> Message:
+    """A value that was not reported. `side`: baseline or gas."""
+    return Message("response.value_missing", {"quantity": quantity, "side": side})
+
+
+def over_correction(gas: GasFigure, base: GasFigure) -> Message:
+    """CO2 fell so far that the pH is now alkalotic."""
+    values: Values = {"ph": gas.ph, "before": base.paco2_mmHg, "after": gas.paco2_mmHg}
+    return Message("response.over_correction", values)
+
+
+def fio2_not_known(side: str) -> Message:
+    """P/F cannot be compared: an FiO2 is not known."""
+    return Message("response.fio2_not_known", {"side": side})
+
+
+def fio2_differs(before: float, after: float) -> Message:
+    """P/F cannot be compared: FiO2 changed by more than the policy allows."""
+    return Message("response.fio2_differs", {"before": before, "after": after})
+
+
+def pf_not_compared(site: str) -> Message:
+    """P/F cannot be compared: no arterial PO2 on both sides."""
+    return Message("response.pf_not_compared", {"site": site})
+
+
+def spo2_range(before: float | None, after: float, low: float, high: float, where: str) -> Message:
+    """SpO2 against its range. `where`: below, within, above (above counts only while oxygen is given)."""
+    values: Values = {"before": before, "after": after, "low": low, "high": high, "where": where}
+    return Message("response.spo2_range", values)
+
+
+def tiring(rr_before: float, rr_after: float, noise: float, beyond: bool) -> Message:
+    """The rate fell while PaCO2 rose and P/F did not: tiring is not excluded."""
+    values: Values = {"before": rr_before, "after": rr_after, "noise": noise, "beyond_noise": beyond}
+    return Message("response.tiring_not_excluded", values)
+
+
+def no_baseline(kind: str, limit_h: float, because: str, newest_at: Instant | None) -> Message:
+    """No gas can serve as baseline. `because`: no gas, too old, other support, venous."""
+    values: Values = {"anchor": kind, "limit_h": limit_h, "because": because, "newest_at": newest_at}
+    return Message("response.no_baseline", values)
+
+
+def about_gas(key: str, gas: GasFigure) -> Message:
+    """A plain fact about one gas: `response.<key>` with its moment and site."""
+    return Message(f"response.{key}", {"gas_at": gas.at, "site": gas.site})
+
+
+def doubts(baseline: GasFigure | None, gas: GasFigure) -> list[Message]:
+    """What makes either gas doubtful. A doubt is always shown."""
+    said: list[Message] = []
+    for side, g in (("baseline", baseline), ("gas", gas)):
+        if g is None:
+            continue
+        for name, true in (("unconfirmed", g.doubt), ("inconsistent", g.consistent is False),
+                           ("corrected", g.corrected), ("disputed", g.disputed)):  # fmt: skip
+            if true:
+                said.append(Message(f"response.{name}", {"side": side, "gas_at": g.at}))
+    return said

@@ -1,0 +1,89 @@
+"""Respiratory rate and SpO2 near a moment: a counted or spot value first, else a median of the device.
+
+A counted rate beats a device rate. A value from the other side of a change is never taken: the caller bounds
+the search.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+from statistics import median
+
+import numpy as np
+
+from core.judgement.policy import Policy
+from core.record.episode import Episode, Series
+from core.record.instant import MINUTE, Instant
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """A value near a moment. `device` is True for a median of device samples; `at` is the newest used."""
+
+    value: float
+    at: Instant
+    device: bool
+
+
+@dataclass(frozen=True)
+class VitalsNear:
+    """Looks up rate and SpO2 of one episode. Build one per context."""
+
+    episode: Episode
+    policy: Policy
+
+    @cached_property
+    def _rates(self) -> tuple[Series, tuple[Series, ...]]:
+        rr = self.episode.number("rr")
+        return _known(rr.spots), (_known(rr.machine), _known(self.episode.number("rr_total")))
+
+    @cached_property
+    def _saturations(self) -> tuple[Series, tuple[Series, ...]]:
+        spo2 = self.episode.number("spo2")
+        return _known(spo2.spots), (_known(spo2.machine),)
+
+    def rate(self, at: Instant, low: Instant, high: Instant) -> Found | None:
+        """The respiratory rate nearest to `at`, later than `low` and not later than `high`."""
+        return self._near(self._rates, at, low, high)
+
+    def spo2(self, at: Instant, low: Instant, high: Instant) -> Found | None:
+        """The SpO2 nearest to `at`, later than `low` and not later than `high`."""
+        return self._near(self._saturations, at, low, high)
+
+    def _near(
+        self, sources: tuple[Series, tuple[Series, ...]], at: Instant, low: Instant, high: Instant
+    ) -> Found | None:
+        reach = int(self.policy.freshness.vitals_min.value * MINUTE)
+        spots, machines = sources
+        found = _nearest(spots, at, max(low, at - reach - 1), min(high, at + reach))
+        if found is not None:
+            return found
+        span = int(self.policy.trend.device_median_min.value * MINUTE)
+        for machine in machines:
+            found = _median_before(machine, max(low, at - span), min(high, at))
+            if found is not None:
+                return found
+        return None
+
+
+def _known(series: Series) -> Series:
+    return series.cut(np.isfinite(series.v)) if len(series) else series
+
+
+def _nearest(series: Series, at: Instant, low: Instant, high: Instant) -> Found | None:
+    """The value nearest to `at` in (low, high]; of two as near, the earlier."""
+    if not len(series):
+        return None
+    i, j = (int(k) for k in np.searchsorted(series.t, [low, high], side="right"))
+    if i >= j:
+        return None
+    near = i + int(np.argmin(np.abs(series.t[i:j] - at)))
+    return Found(float(series.v[near]), int(series.t[near]), False)
+
+
+def _median_before(series: Series, low: Instant, high: Instant) -> Found | None:
+    if not len(series):
+        return None
+    i, j = (int(k) for k in np.searchsorted(series.t, [low, high], side="right"))
+    return Found(median(series.v[i:j].tolist()), int(series.t[j - 1]), True) if i < j else None
