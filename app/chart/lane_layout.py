@@ -1,0 +1,130 @@
+"""Where everything of the ward view stands: one calculation for painting, picking and keys alike."""
+
+from dataclasses import dataclass
+
+from PySide6.QtCore import QRectF
+from PySide6.QtGui import QFontMetricsF
+
+from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
+from app.theme import Theme
+
+_LEAST_CLOCK = 420  # below this many pixels at 100 % the two columns at the right are laid one over the other
+
+
+@dataclass(frozen=True, slots=True)
+class Placed:
+    """An item and its place, in the pixels of its lane (the lane's top left corner is the origin)."""
+
+    item: LaneItem
+    box: QRectF  # what the mouse hits
+    x: float
+    row: float  # middle of the item
+
+
+@dataclass(frozen=True, slots=True)
+class LaneGeometry:
+    """Sizes of the ward view for one width, height and theme; all lanes are alike."""
+
+    width: float
+    head: float
+    lane: float
+    gap: float
+    left: float
+    state: float
+    due: float
+    folded: bool
+    start: int
+    end: int
+
+    @property
+    def right(self) -> float:
+        return self.state if self.folded else self.state + self.due
+
+    @property
+    def clock(self) -> float:
+        return max(self.width - self.left - self.right, 1.0)
+
+    def x(self, instant: int) -> float:
+        """Column of an instant, in the pixels of the view."""
+        return self.left + (instant - self.start) / (self.end - self.start) * self.clock
+
+    def top(self, lane: int) -> float:
+        """Top of a lane below the heading, before scrolling."""
+        return lane * (self.lane + self.gap)
+
+    @property
+    def middle(self) -> float:
+        return self.lane * 0.5
+
+    @property
+    def thickest(self) -> float:
+        return self.lane * 0.30
+
+
+def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> LaneGeometry:
+    """Lanes share the height that is there, within what is still readable and not absurdly tall."""
+    px = theme.px
+    text = QFontMetricsF(theme.font(theme.type.body, bold=True))
+    quiet = QFontMetricsF(theme.font(theme.type.caption))
+    titles = [text.horizontalAdvance(lane.title) for lane in spec.lanes]
+    subtitles = [quiet.horizontalAdvance(lane.subtitle) for lane in spec.lanes]
+    left = min(max([*titles, *subtitles, px(96)]) + px(36), width * 0.24)
+    words = QFontMetricsF(theme.font(theme.type.caption, bold=True))
+    states = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.state_word, lane.verdict_word)]
+    dues = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.due_word, lane.flag_word)]
+    state = min(max([*states, px(60)]) + px(44), width * 0.2)
+    due = min(max([*dues, px(60)]) + px(44), width * 0.24)
+    folded = width - left - state - due < px(_LEAST_CLOCK)
+    if folded:
+        state = max(state, due)
+    head, gap, count = float(px(36)), float(px(6)), max(len(spec.lanes), 1)
+    lane = (height - head) / count - gap
+    least = px(84) if folded else px(60)
+    return LaneGeometry(
+        width, head, round(min(max(lane, least), px(92))), gap, left, state, due, folded, spec.start, spec.end
+    )
+
+
+def place_items(lane: Lane, g: LaneGeometry, theme: Theme) -> list[Placed]:
+    """The items of a lane in order of time, each with its place."""
+    px = theme.px
+    placed: list[Placed] = []
+    flag_end = float("-inf")
+    for item in sorted(lane.items, key=_order):
+        x = g.x(item.at)
+        if item.kind is LaneKind.GAS:
+            row, box = g.middle, _around(x, g.middle, px(20), px(24))
+        elif item.kind is LaneKind.FLAG:
+            x = max(x, flag_end)
+            flag_end = x + px(18)
+            row = px(4) + px(8)
+            box = QRectF(x - px(2), px(2), px(18), px(20))
+        elif item.kind is LaneKind.SETTING:
+            row = g.lane - px(12)
+            box = _around(x, row, px(14), px(24))
+        else:
+            end = g.x(item.at if item.end is None else item.end)
+            window = item.kind is LaneKind.WINDOW
+            row = g.lane - px(12) if window else g.middle
+            box = QRectF(x, row - px(10), max(end - x, px(8)), px(20))
+        if box.right() >= g.left and box.left() <= g.left + g.clock:
+            placed.append(Placed(item, box, x, row))
+    return placed
+
+
+def hit(placed: list[Placed], x: float, y: float) -> LaneItem | None:
+    """The item under a point of the lane; gases and flags before what lies wide beneath them."""
+    under = [p for p in placed if p.box.contains(x, y)]
+    return min(under, key=_narrowness).item if under else None
+
+
+def _narrowness(placed: Placed) -> float:
+    return placed.box.width()
+
+
+def _order(item: LaneItem) -> tuple[int, str]:
+    return item.at, item.kind
+
+
+def _around(x: float, y: float, width: float, height: float) -> QRectF:
+    return QRectF(x - width / 2, y - height / 2, width, height)

@@ -1,0 +1,308 @@
+"""Paints one lane of the ward view, and the heading over all lanes."""
+
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen
+
+from app.chart.lane_layout import LaneGeometry, Placed
+from app.chart.marks import fitted, gas_mark, pennant, solid_pen, verdict_sign
+from app.chart.row import draw_card
+from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
+from app.chart.time_ticks import ClockMark, date_word
+from app.theme import GasState, Theme
+
+_LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
+_FULL_SUPPORT = 20.0  # cmH2O of pressure support that fill the bar
+
+
+class LanePainter:
+    """Paints with one theme and geometry; the painter's origin is the lane's top left corner."""
+
+    def __init__(self, spec: LanesSpec, theme: Theme, geometry: LaneGeometry, marks: list[ClockMark]) -> None:
+        self.spec, self.theme, self.g, self.marks = spec, theme, geometry, marks
+
+    # the heading
+
+    def draw_heading(self, painter: QPainter) -> None:
+        g, theme = self.g, self.theme
+        c = theme.colours
+        painter.fillRect(QRectF(0, 0, g.width, g.head), QColor(c.ground))
+        painter.setFont(theme.font(theme.type.caption))
+        painter.setPen(QColor(c.ink_quiet))
+        pad = theme.px(16)
+        painter.drawText(QRectF(g.left + g.clock + pad, 0, g.right - pad, g.head), _LEFT, self.spec.state_heading)
+        plate = self._now_plate(painter)
+        nearest = g.left + g.clock
+        for mark in self.marks:
+            x = g.x(mark.at)
+            painter.setFont(theme.font(theme.type.caption, bold=mark.midnight))
+            width = painter.fontMetrics().horizontalAdvance(mark.label) + 2
+            room = QRectF(x - width / 2, 0, width, g.head)
+            if not mark.label or room.right() > g.left + g.clock + pad or room.adjusted(-4, 0, 4, 0).intersects(plate):
+                continue
+            painter.setPen(QColor(c.ink if mark.midnight else c.ink_quiet))
+            painter.drawText(room, Qt.AlignmentFlag.AlignCenter, mark.label)
+            nearest = min(nearest, room.left())
+        self._draw_left_date(painter, nearest)
+
+    def _draw_left_date(self, painter: QPainter, nearest: float) -> None:
+        theme = self.theme
+        painter.setFont(theme.font(theme.type.caption, bold=True))
+        word = date_word(self.spec.start, self.spec.zone)
+        width = painter.fontMetrics().horizontalAdvance(word)
+        if self.spec.lane_heading:
+            painter.setFont(theme.font(theme.type.caption))
+            painter.setPen(QColor(theme.colours.ink_quiet))
+            room = QRectF(theme.px(16), 0, self.g.left - width - theme.px(48), self.g.head)
+            painter.drawText(room, _LEFT, fitted(painter, self.spec.lane_heading, room.width()))
+            painter.setFont(theme.font(theme.type.caption, bold=True))
+        painter.setPen(QColor(theme.colours.ink))
+        right = min(self.g.left - theme.px(8), nearest - theme.px(8))
+        painter.drawText(QRectF(right - width - 2, 0, width + 2, self.g.head), _LEFT, word)
+
+    def _now_plate(self, painter: QPainter) -> QRectF:
+        spec, theme, g = self.spec, self.theme, self.g
+        if spec.now is None or not spec.now_word or not g.start <= spec.now <= g.end:
+            return QRectF()
+        painter.setFont(theme.font(theme.type.caption, bold=True))
+        width = painter.fontMetrics().horizontalAdvance(spec.now_word) + theme.px(12)
+        height = theme.px(20)
+        left = min(g.x(spec.now) - width / 2, g.width - width)
+        plate = QRectF(round(left), (g.head - height) / 2, width, height)
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(QColor(theme.colours.accent))
+        painter.drawRoundedRect(plate, theme.px(4), theme.px(4))
+        painter.restore()
+        painter.setPen(QColor(theme.colours.on_accent))
+        painter.drawText(plate, Qt.AlignmentFlag.AlignCenter, spec.now_word)
+        return plate
+
+    # a lane
+
+    def draw_lane(
+        self, painter: QPainter, lane: Lane, placed: list[Placed], chosen: bool, item: LaneItem | None, focus: bool
+    ) -> None:
+        g, theme = self.g, self.theme
+        c = theme.colours
+        card = QRectF(0, 0, g.width, g.lane)
+        if lane.closed:
+            painter.save()
+            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+            painter.setPen(QPen(QColor(c.line), 1))
+            painter.drawRoundedRect(card.adjusted(0.5, 0.5, -0.5, -0.5), 8, 8)
+            painter.restore()
+        else:
+            draw_card(painter, theme, card)
+        if lane.first_word:
+            painter.fillRect(QRectF(0, theme.px(10), theme.px(4), g.lane - theme.px(20)), QColor(c.accent))
+        self._draw_name(painter, lane)
+        painter.save()
+        painter.setClipRect(QRectF(g.left - 1, 1, g.clock + 2, g.lane - 2))
+        self._draw_clock(painter, lane, placed)
+        painter.restore()
+        self._draw_right(painter, lane)
+        self._draw_now(painter)
+        self._draw_items(painter, placed, item)
+        if chosen:
+            self._ring(painter, card.adjusted(1, 1, -1, -1), 2.0 if focus else 1.0)
+
+    def _ring(self, painter: QPainter, box: QRectF, width: float) -> None:
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setBrush(Qt.BrushStyle.NoBrush)
+        painter.setPen(QPen(QColor(self.theme.colours.accent), width))
+        painter.drawRoundedRect(box, self.theme.px(6), self.theme.px(6))
+        painter.restore()
+
+    def _ink(self, lane: Lane) -> QColor:
+        return QColor(self.theme.colours.ink_quiet if lane.closed else self.theme.colours.ink)
+
+    def _draw_name(self, painter: QPainter, lane: Lane) -> None:
+        g, theme = self.g, self.theme
+        pad, line = theme.px(16), theme.px(19)
+        lines = 3 if lane.first_word and g.lane >= 3 * line + theme.px(4) else 2
+        y = g.lane / 2 - lines * line / 2
+        room = g.left - pad - theme.px(12)
+        if lane.first_word and lines == 3:
+            painter.setFont(theme.font(theme.type.caption, bold=True))
+            painter.setPen(QColor(theme.colours.accent))
+            painter.drawText(QRectF(pad, y, room, line), _LEFT, fitted(painter, lane.first_word, room))
+            y += line
+        painter.setFont(theme.font(theme.type.body, bold=True))
+        painter.setPen(self._ink(lane))
+        painter.drawText(QRectF(pad, y, room, line), _LEFT, fitted(painter, lane.title, room))
+        painter.setFont(theme.font(theme.type.caption))
+        painter.setPen(QColor(theme.colours.ink_quiet))
+        painter.drawText(QRectF(pad, y + line, room, line), _LEFT, fitted(painter, lane.subtitle, room))
+
+    def _draw_clock(self, painter: QPainter, lane: Lane, placed: list[Placed]) -> None:
+        g, c = self.g, self.theme.colours
+        for mark in self.marks:
+            if mark.label:
+                colour = c.edge if mark.midnight else c.line
+                painter.fillRect(QRectF(round(g.x(mark.at)), 1, 1, g.lane - 2), QColor(colour))
+        painter.fillRect(QRectF(g.left, round(g.middle), g.clock, 1), QColor(c.line))
+        painter.save()
+        if lane.closed:
+            painter.setOpacity(0.55)
+        for piece in lane.support:
+            self._draw_support(painter, piece.start, piece.end, piece.pressure, piece.word)
+        painter.restore()
+        for p in placed:
+            if p.item.kind is LaneKind.BREAK:
+                self._draw_break(painter, p)
+
+    def _draw_support(self, painter: QPainter, start: int, end: int, pressure: float | None, word: str) -> None:
+        g, theme = self.g, self.theme
+        c = theme.colours
+        a, b = max(g.x(start), g.left), min(g.x(end), g.left + g.clock)
+        if b <= a:
+            return
+        if pressure is None:
+            painter.fillRect(QRectF(a, round(g.middle) - 1, b - a, 3), QColor(c.support_edge))
+        else:
+            share = min(max(pressure, 0.0) / _FULL_SUPPORT, 1.0)
+            half = round((theme.px(4) + share * (g.thickest - theme.px(4))) / 2)
+            band = QRectF(a, round(g.middle) - half, b - a, 2 * half + 1)
+            painter.fillRect(band, QColor(c.support))
+            for y in (band.top(), band.bottom() - 1):
+                painter.fillRect(QRectF(a, y, b - a, 1), QColor(c.support_edge))
+        painter.setFont(theme.font(theme.type.caption))
+        text = fitted(painter, word, b - a - theme.px(8))
+        if text:
+            painter.setPen(QColor(c.ink_quiet))
+            height = painter.fontMetrics().height()
+            y = g.middle - g.thickest / 2 - height if pressure is not None else g.middle - height - theme.px(2)
+            painter.drawText(QRectF(a + theme.px(4), y, b - a, height), _LEFT, text)
+
+    def _draw_break(self, painter: QPainter, placed: Placed) -> None:
+        g, theme = self.g, self.theme
+        c, box = theme.colours, placed.box
+        thick = g.thickest + theme.px(4)
+        painter.fillRect(QRectF(box.left(), g.middle - thick / 2, box.width(), thick), QColor(c.raised))
+        dots = solid_pen(c.ink_quiet, 1.0)
+        dots.setDashPattern([1, 3])
+        painter.setPen(dots)
+        y = round(g.middle) + 0.5
+        painter.drawLine(QPointF(box.left(), y), QPointF(box.right(), y))
+        painter.setFont(theme.font(theme.type.caption))
+        word = fitted(painter, placed.item.word, box.width() - theme.px(4))
+        if word:
+            width, height = painter.fontMetrics().horizontalAdvance(word), painter.fontMetrics().height()
+            room = QRectF(box.center().x() - width / 2 - 2, g.middle - height / 2, width + 4, height)
+            painter.fillRect(room, QColor(c.raised))
+            painter.setPen(QColor(c.ink_quiet))
+            painter.drawText(room, Qt.AlignmentFlag.AlignCenter, word)
+
+    def _draw_items(self, painter: QPainter, placed: list[Placed], chosen: LaneItem | None) -> None:
+        taken: list[tuple[float, float]] = []
+        for kind in (LaneKind.WINDOW, LaneKind.SETTING, LaneKind.FLAG, LaneKind.GAS):
+            for p in placed:
+                if p.item.kind is kind:
+                    self._draw_item(painter, p, taken)
+        for p in placed:
+            if p.item is chosen:
+                self._ring(painter, p.box.adjusted(-1, -1, 1, 1), 2.0)
+
+    def _draw_item(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
+        item, theme = placed.item, self.theme
+        if item.kind is LaneKind.GAS:
+            state = item.state or GasState.UNKNOWN
+            gas_mark(painter, theme, state, item.verdict, placed.x, placed.row, theme.px(14), item.doubtful)
+        elif item.kind is LaneKind.FLAG and item.tier is not None:
+            foot = placed.box.bottom() - theme.px(2)
+            pennant(painter, theme, item.tier, placed.x, foot, theme.px(16), item.settled)
+        elif item.kind is LaneKind.WINDOW:
+            self._draw_window(painter, placed, taken)
+        else:
+            self._draw_setting(painter, placed, taken)
+
+    def _draw_window(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
+        g, theme = self.g, self.theme
+        c = theme.colours
+        a, b = max(placed.box.left(), g.left), min(placed.box.right(), g.left + g.clock)
+        rail = round(g.lane - theme.px(21)) + 0.5
+        pen = solid_pen(c.accent, 1.5)
+        pen.setDashPattern([3, 2])
+        painter.setPen(pen)
+        painter.drawLine(QPointF(a, rail), QPointF(b, rail))
+        painter.setPen(solid_pen(c.accent, 1.5))
+        for x in (placed.box.left(), placed.box.right()):
+            if g.left <= x <= g.left + g.clock:
+                painter.drawLine(QPointF(x, rail - 2), QPointF(x, rail + theme.px(4)))
+        painter.setFont(theme.font(theme.type.caption))
+        width = painter.fontMetrics().horizontalAdvance(placed.item.word)
+        left = min(max((a + b - width) / 2, g.left), g.left + g.clock - width)
+        self._words(painter, placed.item.word, left, rail + 2, QColor(c.ink), taken)
+
+    def _draw_setting(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
+        g, theme = self.g, self.theme
+        c = theme.colours
+        foot = g.middle + g.thickest / 2
+        painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
+        painter.setFont(theme.font(theme.type.caption))
+        self._words(painter, placed.item.word, placed.x - 1, g.lane - theme.px(19), QColor(c.ink_quiet), taken)
+
+    def _words(
+        self, painter: QPainter, word: str, left: float, top: float, ink: QColor, taken: list[tuple[float, float]]
+    ) -> None:
+        """Words in the lane's foot, where no others stand yet; the sentence has them in any case."""
+        metrics = QFontMetricsF(painter.font())
+        width, gap = metrics.horizontalAdvance(word), self.theme.px(6)
+        clear = all(left + width + gap <= a or left >= b + gap for a, b in taken)
+        if word and clear and left + width <= self.g.left + self.g.clock + 2:
+            taken.append((left, left + width))
+            painter.setPen(ink)
+            painter.drawText(QRectF(left, top, width + 2, metrics.height()), _LEFT, word)
+
+    def _draw_now(self, painter: QPainter) -> None:
+        now, g = self.spec.now, self.g
+        if now is not None and g.start <= now <= g.end:
+            painter.fillRect(QRectF(round(g.x(now)) - 1, 1, 2, g.lane - 2), QColor(self.theme.colours.accent))
+
+    def _draw_right(self, painter: QPainter, lane: Lane) -> None:
+        g, theme = self.g, self.theme
+        line, pad = theme.px(20), theme.px(16)
+        x = g.left + g.clock + pad
+        rows = 4 if g.folded else 2
+        y = g.lane / 2 - rows * line / 2
+        room = g.state - pad - theme.px(22)
+        ink = self._ink(lane)
+        if lane.state is not None:
+            gas_mark(painter, theme, lane.state, None, x + theme.px(6), y + line / 2, theme.px(11))
+        self._right_words(painter, lane.state_word, QRectF(x + theme.px(20), y, room, line), ink, bold=True)
+        if lane.verdict is not None:
+            box = QRectF(x + theme.px(1), y + line * 1.5 - theme.px(5), theme.px(10), theme.px(10))
+            verdict_sign(painter, theme, lane.verdict, box)
+        self._right_words(painter, lane.verdict_word, QRectF(x + theme.px(20), y + line, room, line), ink)
+        if g.folded:
+            y += 2 * line
+        else:
+            x, room = x + g.state, g.due - pad - theme.px(22)
+        if lane.tier is not None:
+            pennant(painter, theme, lane.tier, x + theme.px(1), y + line - theme.px(3), theme.px(14), lane.closed)
+        self._right_words(painter, lane.flag_word, QRectF(x + theme.px(20), y, room, line), ink, bold=True)
+        self._draw_due(painter, lane, x, y + line, room, line)
+
+    def _draw_due(self, painter: QPainter, lane: Lane, x: float, y: float, room: float, line: float) -> None:
+        if not lane.due_word:
+            return
+        theme, c = self.theme, self.theme.colours
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        face = QPointF(x + theme.px(6), y + line / 2)
+        painter.setPen(solid_pen(c.ink_quiet, 1.4))
+        painter.setBrush(QColor(c.ink_quiet) if lane.due_late else Qt.BrushStyle.NoBrush)
+        painter.drawEllipse(face, theme.px(5), theme.px(5))
+        painter.setPen(solid_pen(c.raised if lane.due_late else c.ink_quiet, 1.4))
+        painter.drawLine(face, QPointF(face.x(), face.y() - theme.px(3)))
+        painter.drawLine(face, QPointF(face.x() + theme.px(2), face.y()))
+        painter.restore()
+        place = QRectF(x + theme.px(20), y, room, line)
+        self._right_words(painter, lane.due_word, place, self._ink(lane), bold=lane.due_late)
+
+    def _right_words(self, painter: QPainter, word: str, room: QRectF, ink: QColor, *, bold: bool = False) -> None:
+        painter.setFont(self.theme.font(self.theme.type.caption, bold=bold))
+        painter.setPen(ink)
+        painter.drawText(room, _LEFT, fitted(painter, word, room.width()))

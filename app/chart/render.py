@@ -1,0 +1,109 @@
+"""Pictures of charts at their own resolution, drawn by QPainter and never grabbed from a screen.
+
+Each takes anything that is `Pictured`: a chart widget laid out off-screen and painted into a device.
+"""
+
+from pathlib import Path
+from typing import Protocol
+
+from PySide6.QtCore import QMarginsF, QRectF, QSize, QSizeF, Qt
+from PySide6.QtGui import QColor, QImage, QPageSize, QPainter, QPdfWriter
+from PySide6.QtWidgets import QApplication, QWidget
+
+from app.chart.acid_base_map import AcidBaseMap
+from app.chart.lanes import WardLanes
+from app.chart.shapes import LanesSpec, MapSpec, StackSpec
+from app.chart.stack import PanelStack
+from app.theme import Theme
+
+Spec = StackSpec | LanesSpec | MapSpec
+_DOTS_PER_INCH = 96  # one pixel of a chart is 1/96 inch on paper
+
+
+class Pictured(Protocol):
+    """A chart that can paint itself, whole, on `width` x `height` pixels."""
+
+    def paint_on(self, painter: QPainter, width: int, height: int) -> None: ...
+
+
+def chart_of(spec: Spec, theme: Theme, width: int, height: int, scale: float = 1.0) -> QWidget:
+    """A chart laid out off-screen at a size in pixels, to be painted with `scale` dots per pixel."""
+    chart: QWidget
+    if isinstance(spec, StackSpec):
+        chart = PanelStack(theme)
+    elif isinstance(spec, LanesSpec):
+        chart = WardLanes(theme)
+    else:
+        chart = AcidBaseMap(theme)
+    chart.setAttribute(Qt.WidgetAttribute.WA_DontShowOnScreen)
+    chart.setAttribute(Qt.WidgetAttribute.WA_ShowWithoutActivating)
+    chart.set_spec(spec)  # type: ignore[attr-defined]
+    chart.setMinimumHeight(0)
+    chart.resize(width, height)
+    chart.show()  # lays it out; it never reaches a screen
+    QApplication.sendPostedEvents()
+    if isinstance(chart, PanelStack):
+        chart.use_pen_scale(scale)
+    return chart
+
+
+def image_of(spec: Spec, theme: Theme, width: int, height: int, scale: float = 1.0) -> QImage:
+    """A picture of `width` x `height` pixels with `scale` dots per pixel each way."""
+    image = QImage(QSize(round(width * scale), round(height * scale)), QImage.Format.Format_RGB32)
+    image.setDotsPerMeterX(round(_DOTS_PER_INCH * scale / 0.0254))
+    image.setDotsPerMeterY(round(_DOTS_PER_INCH * scale / 0.0254))
+    image.fill(QColor(theme.colours.ground))
+    painter = QPainter(image)
+    painter.setRenderHint(QPainter.RenderHint.TextAntialiasing)
+    painter.scale(scale, scale)
+    _paint(spec, theme, painter, width, height, scale)
+    painter.end()
+    return image
+
+
+def svg_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
+    """Writes the chart as SVG; OSError where the file cannot be written."""
+    from PySide6.QtSvg import QSvgGenerator
+
+    generator = QSvgGenerator()
+    generator.setFileName(str(path))
+    generator.setSize(QSize(width, height))
+    generator.setViewBox(QRectF(0, 0, width, height))
+    generator.setResolution(_DOTS_PER_INCH)
+    generator.setTitle(title)
+    painter = QPainter()
+    if not painter.begin(generator):
+        raise OSError(f"{path}: cannot be written; a folder that exists and may be written to is accepted")
+    painter.fillRect(QRectF(0, 0, width, height), QColor(theme.colours.ground))
+    _paint(spec, theme, painter, width, height, 1.0)
+    painter.end()
+
+
+def pdf_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
+    """Writes the chart as a PDF of one page of its own size; OSError where the file cannot be written."""
+    writer = QPdfWriter(str(path))
+    points = QSizeF(width * 72 / _DOTS_PER_INCH, height * 72 / _DOTS_PER_INCH)
+    writer.setPageSize(QPageSize(points, QPageSize.Unit.Point, "", QPageSize.SizeMatchPolicy.ExactMatch))
+    writer.setPageMargins(QMarginsF(0, 0, 0, 0))
+    writer.setResolution(_DOTS_PER_INCH)
+    writer.setTitle(title)
+    painter = QPainter()
+    if not painter.begin(writer):
+        raise OSError(f"{path}: cannot be written; a folder that exists and may be written to is accepted")
+    painter.fillRect(QRectF(0, 0, width, height), QColor(theme.colours.ground))
+    _paint(spec, theme, painter, width, height, 1.0)
+    painter.end()
+
+
+def paint_chart(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int) -> None:
+    """Paints a chart at the painter's origin, for a page that holds more than the chart."""
+    _paint(spec, theme, painter, width, height, 1.0)
+
+
+def _paint(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int, scale: float) -> None:
+    chart = chart_of(spec, theme, width, height, scale)
+    try:
+        chart.paint_on(painter, width, height)  # type: ignore[attr-defined]
+    finally:
+        chart.close()
+        chart.deleteLater()

@@ -1,0 +1,343 @@
+"""The panels of one episode on one clock: ribbon on top, events and the time axis at the foot."""
+
+from collections.abc import Sequence
+
+import pyqtgraph as pg
+from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
+from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QPainter, QPen, QResizeEvent
+from PySide6.QtWidgets import QWidget
+
+from app.chart.panel import PanelRow
+from app.chart.ribbon import RibbonRow
+from app.chart.row import ClockRow, Margins
+from app.chart.shapes import MICROSECONDS, Bracket, Reading, RibbonStep, StackSpec, Tick
+from app.chart.time_axis import EventRow, TimeAxisRow
+from app.chart.time_ticks import MINUTE, date_word, time_ticks
+from app.theme import GRID, Theme
+
+LEAST_SPAN = 5 * MINUTE
+_PANEL_LEAST = 120  # pixels at 100 %
+_RIBBON_WEIGHT = 1.1
+
+
+class PanelStack(pg.GraphicsView):
+    """Draws a StackSpec. Keys: arrows pan (Shift: half a window), + and - zoom, Home start, End now, 0 all."""
+
+    instant_changed = Signal(object)
+    range_changed = Signal(object, object)
+    reduced_changed = Signal(bool)
+    bracket_activated = Signal(object)
+    tick_activated = Signal(object)
+
+    def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
+        super().__init__(parent, background=None, useOpenGL=False)
+        self.theme = theme
+        self.spec: StackSpec | None = None
+        self.rows: list[ClockRow] = []
+        self.ribbon: RibbonRow | None = None
+        self.axis: TimeAxisRow | None = None
+        self.instant: int | None = None
+        self._window = (0, 1)
+        self._reduced = False
+        self._margins = Margins(0, 0, 0)
+        self.grid = pg.GraphicsLayout()
+        self.setCentralWidget(self.grid)
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.setMouseTracking(True)
+        self.scene().sigMouseMoved.connect(self._moved)
+        self.set_theme(theme)
+
+    # what to draw
+
+    def set_theme(self, theme: Theme) -> None:
+        """Draws everything anew in another look."""
+        self.theme = theme
+        self.setBackground(QColor(theme.colours.ground))
+        if self.spec is not None:
+            window = self._window
+            self.set_spec(self.spec)
+            self.set_window(*window)
+
+    def set_spec(self, spec: StackSpec) -> None:
+        """Takes a new episode, or the same with new values; shows the spec's window."""
+        self.spec = spec
+        self.instant = None
+        self._clear()
+        self._build(spec)
+        self._arrange()
+        self.setAccessibleName(spec.name)
+        self.setAccessibleDescription(spec.summary)
+        start, end = spec.window or (spec.start, spec.end)
+        self.set_window(start, end)
+
+    def _clear(self) -> None:
+        self.grid.clear()
+        self.rows, self.ribbon, self.axis = [], None, None
+
+    def _build(self, spec: StackSpec) -> None:
+        origin = spec.start
+        if spec.ribbon is not None:
+            self.ribbon = RibbonRow(spec.ribbon, self.theme, origin)
+            self.rows.append(self.ribbon)
+        self.rows += [PanelRow(panel, self.theme, origin) for panel in spec.panels]
+        if spec.events:
+            self.rows.append(EventRow(spec.events, self.theme, origin))
+        self.axis = TimeAxisRow(self.theme, origin)
+        self.axis.now_word = spec.now_word
+        self.rows.append(self.axis)
+        for row in self.rows:
+            row.now = spec.now
+            if spec.ribbon is not None:
+                row.breaks = spec.ribbon.breaks
+            row.view.dragged.connect(self.pan_seconds)
+            row.view.wheeled.connect(self._wheeled)
+            row.view.picked.connect(self._picked)
+
+    def _arrange(self) -> None:
+        gap = self.theme.px(2 * GRID)
+        layout = self.grid.layout
+        layout.setContentsMargins(gap, gap, gap, 0)
+        layout.setVerticalSpacing(gap)
+        self._margins = Margins(
+            max(row.left_wanted() for row in self.rows),
+            max(row.axis_right_wanted() for row in self.rows),
+            max(max(row.gutter_wanted() for row in self.rows), self.theme.px(24)),
+        )
+        for n, row in enumerate(self.rows):
+            self.grid.addItem(row.item, row=n, col=0)
+            row.set_margins(self._margins)
+            fixed = row.height() if isinstance(row, EventRow | TimeAxisRow) else None
+            if fixed is not None:
+                layout.setRowFixedHeight(n, fixed)
+                layout.setRowStretchFactor(n, 0)
+            else:
+                layout.setRowMinimumHeight(n, self._least_height(row))
+                layout.setRowStretchFactor(n, round(100 * self._weight(row)))
+        self.setMinimumHeight(self.minimumSizeHint().height())
+
+    def _weight(self, row: ClockRow) -> float:
+        if isinstance(row, RibbonRow):
+            return _RIBBON_WEIGHT
+        return row.spec.weight if isinstance(row, PanelRow) else 0.0
+
+    def _least_height(self, row: ClockRow) -> int:
+        return self.theme.px(_PANEL_LEAST) + row.top_height() - self.theme.px(28)
+
+    def minimumSizeHint(self) -> QSize:
+        gap = self.theme.px(2 * GRID)
+        height = gap
+        for row in self.rows:
+            fixed = row.height() if isinstance(row, EventRow | TimeAxisRow) else self._least_height(row)
+            height += fixed + gap
+        return QSize(self.theme.px(480), height)
+
+    def sizeHint(self) -> QSize:
+        return QSize(self.theme.px(960), round(self.minimumSizeHint().height() * 1.3))
+
+    # the window of time
+
+    @property
+    def window(self) -> tuple[int, int]:
+        """Start and end of what is in view."""
+        return self._window
+
+    def set_window(self, start: int, end: int) -> None:
+        """Shows a stretch of time, kept inside the episode with a little air at both ends."""
+        if self.spec is None:
+            return
+        start, end = self._inside(int(start), int(end))
+        self._window = (start, end)
+        self._show()
+        self.range_changed.emit(start, end)
+
+    def _inside(self, start: int, end: int) -> tuple[int, int]:
+        assert self.spec is not None
+        latest = max(self.spec.end, self.spec.now or self.spec.end)
+        air = max((latest - self.spec.start) // 50, MINUTE)
+        low, high = self.spec.start - air, latest + air
+        span = min(max(end - start, LEAST_SPAN), high - low)
+        if end - start != span:
+            start = (start + end - span) // 2
+        start = min(max(start, low), high - span)
+        return start, start + span
+
+    def _show(self) -> None:
+        assert self.spec is not None
+        assert self.axis is not None
+        start, end = self._window
+        width = max(self.axis.view.rect().width(), 1.0)
+        marks = time_ticks(start, end, width, self.spec.zone, self.axis.measure)
+        for row in self.rows:
+            if row is self.axis:
+                self.axis.show_dated(start, end, marks, date_word(start, self.spec.zone))
+            else:
+                row.show_window(start, end, marks)
+        if self.instant is not None:
+            self._point(self.instant)
+        reduced = any(row.reduced for row in self.rows)
+        if reduced != self._reduced:
+            self._reduced = reduced
+            self.reduced_changed.emit(reduced)
+
+    @property
+    def reduced(self) -> bool:
+        """Some data in view are reduced to their extremes per pixel."""
+        return self._reduced
+
+    def pan_seconds(self, seconds: float) -> None:
+        """Moves the window by seconds; positive goes later."""
+        start, end = self._window
+        by = round(seconds * MICROSECONDS)
+        self.set_window(start + by, end + by)
+
+    def zoom(self, factor: float, about: int | None = None) -> None:
+        """Multiplies the span, keeping an instant in its place (the crosshair or the middle)."""
+        start, end = self._window
+        if about is None:
+            inside = self.instant is not None and start <= self.instant <= end
+            about = self.instant if inside and self.instant is not None else (start + end) // 2
+        self.set_window(about - round((about - start) * factor), about + round((end - about) * factor))
+
+    def go_to(self, instant: int) -> None:
+        """Moves the window so that an instant stands in its middle, e.g. an anchor."""
+        span = self._window[1] - self._window[0]
+        self.set_window(instant - span // 2, instant - span // 2 + span)
+
+    def go_home(self) -> None:
+        """The start of the episode at the left, at the present span."""
+        if self.spec is not None:
+            span = self._window[1] - self._window[0]
+            self.set_window(self.spec.start - span // 50, self.spec.start - span // 50 + span)
+
+    def go_now(self) -> None:
+        """Now (or the episode's end) at the right, at the present span."""
+        if self.spec is not None:
+            last = self.spec.end if self.spec.now is None else self.spec.now
+            span = self._window[1] - self._window[0]
+            self.set_window(last - span + span // 50, last + span // 50)
+
+    def show_all(self) -> None:
+        if self.spec is not None:
+            self.set_window(self.spec.start, max(self.spec.end, self.spec.now or self.spec.end))
+
+    # the crosshair
+
+    def point_at(self, instant: int | None) -> None:
+        """Puts the crosshair at an instant, or takes it away; says so by instant_changed."""
+        if instant != self.instant:
+            self.instant = instant
+            self._point(instant)
+            self.instant_changed.emit(instant)
+
+    def _point(self, instant: int | None) -> None:
+        inside = instant is not None and self._window[0] <= instant <= self._window[1]
+        for row in self.rows:
+            row.point_at(instant if inside else None)
+
+    def readings_at(self, instant: int) -> tuple[Reading, ...]:
+        """Every trace's last value at or before an instant; its own instant tells its age."""
+        return tuple(reading for row in self.rows for reading in row.readings(instant))
+
+    def settings_at(self, instant: int) -> RibbonStep | None:
+        """The settings in force at an instant."""
+        return self.ribbon.step_at(instant) if self.ribbon is not None else None
+
+    # the reader's hands
+
+    def _moved(self, at: QPointF) -> None:
+        if self.spec is None or self.axis is None:
+            return
+        view = self.axis.view
+        x = view.mapFromScene(at).x()
+        if not 0 <= x <= view.rect().width():
+            self.point_at(None)
+            return
+        start, end = self._window
+        self.point_at(start + round(x / view.rect().width() * (end - start)))
+
+    def _wheeled(self, factor: float, seconds: float) -> None:
+        if self.spec is not None:
+            self.zoom(factor, self.spec.start + round(seconds * MICROSECONDS))
+
+    def _picked(self, at: QPointF) -> None:
+        sender = self.sender()
+        row = next((row for row in self.rows if row.view is sender), None)
+        found = row.picked(at) if row is not None else None
+        if isinstance(found, Bracket):
+            self.bracket_activated.emit(found)
+        elif isinstance(found, Tick):
+            self.tick_activated.emit(found)
+
+    def leaveEvent(self, event: QEvent) -> None:
+        self.point_at(None)
+        super().leaveEvent(event)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        keys, span = Qt.Key, (self._window[1] - self._window[0]) / MICROSECONDS
+        step = span / (2 if event.modifiers() & Qt.KeyboardModifier.ShiftModifier else 8)
+        match event.key():
+            case keys.Key_Left:
+                self.pan_seconds(-step)
+            case keys.Key_Right:
+                self.pan_seconds(step)
+            case keys.Key_Plus | keys.Key_Equal:
+                self.zoom(0.5)
+            case keys.Key_Minus:
+                self.zoom(2.0)
+            case keys.Key_Home:
+                self.go_home()
+            case keys.Key_End:
+                self.go_now()
+            case keys.Key_0:
+                self.show_all()
+            case _:
+                event.ignore()  # the window may know the key; pyqtgraph's own handler would swallow it
+                return
+        event.accept()
+
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        super().focusInEvent(event)
+        self.viewport().update()
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        super().focusOutEvent(event)
+        self.viewport().update()
+
+    def drawForeground(self, painter: QPainter, rect: object) -> None:
+        """The ring that shows where the keys go."""
+        super().drawForeground(painter, rect)
+        if self.hasFocus():
+            painter.save()
+            painter.resetTransform()
+            pen = QPen(QColor(self.theme.colours.accent), 2)
+            painter.setPen(pen)
+            painter.drawRect(self.viewport().rect().adjusted(1, 1, -1, -1))
+            painter.restore()
+
+    def resizeEvent(self, event: QResizeEvent | None) -> None:
+        super().resizeEvent(event)
+        if getattr(self, "spec", None) is not None:
+            self.grid.layout.activate()
+            self._show()
+
+    def close(self) -> bool:
+        """Closes as any widget does: pyqtgraph would also destroy items that are still referred to."""
+        return bool(QWidget.close(self))
+
+    # pictures
+
+    def use_pen_scale(self, scale: float) -> None:
+        """For pictures with `scale` dots per pixel."""
+        for row in self.panels():
+            row.use_pen_scale(scale)
+        if self.spec is not None:
+            self._show()
+
+    def panels(self) -> Sequence[PanelRow]:
+        """The rows that hold traces."""
+        return [row for row in self.rows if isinstance(row, PanelRow)]
+
+    def paint_on(self, painter: QPainter, width: int, height: int) -> None:
+        """Paints the whole stack at the painter's origin; the widget was laid out at this size."""
+        area = QRectF(0, 0, width, height)
+        self.scene().render(painter, area, area, Qt.AspectRatioMode.IgnoreAspectRatio)

@@ -1,0 +1,141 @@
+"""The one visible time axis of a stack, and the row of events above it."""
+
+from collections.abc import Sequence
+
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QPainter
+
+from app.chart.ribbon import draw_ticks
+from app.chart.row import FRONT, ClockRow, Layer
+from app.chart.shapes import Tick
+from app.chart.time_ticks import ClockMark, date_word
+from app.theme import Theme
+
+
+class TimeAxisRow(ClockRow):
+    """Labels of the clock in local wall time; the date of the left edge stands in the left margin."""
+
+    def __init__(self, theme: Theme, origin: int) -> None:
+        super().__init__("", theme, origin)
+        self.now_word = ""
+        self.left_word = ""
+        self.labels = Layer(self.item, FRONT, self._whole, self._draw_labels)
+
+    def top_height(self) -> int:
+        return 0
+
+    def foot_height(self) -> int:
+        return 0
+
+    def left_wanted(self) -> int:
+        return round(self.metrics().horizontalAdvance("00-Mmm")) + self.theme.px(12)
+
+    def height(self) -> int:
+        return self.theme.px(28)
+
+    def measure(self, word: str) -> float:
+        """Width of a label in pixels."""
+        return self.metrics().horizontalAdvance(word)
+
+    def show_dated(self, start: int, end: int, marks: Sequence[ClockMark], left_word: str) -> None:
+        """Moves the axis; `left_word` is the date at its left edge."""
+        self.left_word = left_word
+        self.show_window(start, end, marks)
+        self.labels.update()
+
+    def _view_resized(self, _view: object = None) -> None:
+        super()._view_resized(_view)
+        self.labels.resized()
+
+    def _item_resized(self) -> None:
+        super()._item_resized()
+        self.labels.resized()
+
+    def _draw_card(self, painter: QPainter) -> None:
+        """No card: the axis lies on the ground."""
+
+    def _draw_back(self, painter: QPainter) -> None:
+        """No lines: the rows above have them."""
+
+    def _draw_front(self, painter: QPainter) -> None:
+        """The now mark is drawn with the labels."""
+
+    def _draw_labels(self, painter: QPainter) -> None:
+        frame, theme = self.frame(), self.theme
+        c, left, height = theme.colours, self.view.pos().x(), self.height()
+        now = self._now_plate(painter, left, height)
+        nearest = left
+        for mark in self.marks:
+            if not mark.label:
+                continue
+            x = left + float(frame.x(self.seconds(mark.at)))
+            painter.setFont(theme.font(theme.type.caption, bold=mark.midnight))
+            width = painter.fontMetrics().horizontalAdvance(mark.label) + 2
+            room = QRectF(x - width / 2, 0, width, height)
+            if now is not None and room.adjusted(-4, 0, 4, 0).intersects(now):
+                continue
+            painter.setPen(QColor(c.ink if mark.midnight else c.ink_quiet))
+            painter.drawText(room, Qt.AlignmentFlag.AlignCenter, mark.label)
+            nearest = min(nearest, room.left())
+        painter.setFont(theme.font(theme.type.caption, bold=True))
+        painter.setPen(QColor(c.ink))
+        room = QRectF(0, 0, left - theme.px(8), height)
+        if painter.fontMetrics().horizontalAdvance(self.left_word) <= nearest - 4:
+            side = Qt.AlignmentFlag.AlignLeft if nearest < left else Qt.AlignmentFlag.AlignRight
+            painter.drawText(room, side | Qt.AlignmentFlag.AlignVCenter, self.left_word)
+
+    def _now_plate(self, painter: QPainter, left: float, height: float) -> QRectF | None:
+        """The word at the now line, on a plate of the accent; returns the room it takes."""
+        if self.now is None or not self.now_word:
+            return None
+        frame, theme = self.frame(), self.theme
+        x = float(frame.x(self.seconds(self.now)))
+        if not -1 <= x <= frame.width + 1:
+            return None
+        painter.setFont(theme.font(theme.type.caption, bold=True))
+        width = painter.fontMetrics().horizontalAdvance(self.now_word) + theme.px(12)
+        at = min(left + x - width / 2, self.item.rect().width() - width)
+        plate = QRectF(round(at), theme.px(4), width, height - theme.px(8))
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(QColor(theme.colours.accent))
+        painter.drawRoundedRect(plate, theme.px(4), theme.px(4))
+        painter.restore()
+        painter.setPen(QColor(theme.colours.on_accent))
+        painter.drawText(plate, Qt.AlignmentFlag.AlignCenter, self.now_word)
+        return plate
+
+
+class EventRow(ClockRow):
+    """Events as ticks with words, in a card of its own."""
+
+    def __init__(self, ticks: tuple[Tick, ...], theme: Theme, origin: int) -> None:
+        super().__init__("", theme, origin)
+        self.ticks = tuple(sorted(ticks, key=lambda tick: tick.at))
+
+    def top_height(self) -> int:
+        return self.theme.px(4)
+
+    def foot_height(self) -> int:
+        return self.theme.px(4)
+
+    def height(self) -> int:
+        return self.theme.px(32)
+
+    def picked(self, at: QPointF) -> object | None:
+        frame = self.frame()
+        near = [t for t in self.ticks if -4 <= at.x() - float(frame.x(self.seconds(t.at))) <= self.theme.px(40)]
+        return near[-1] if near else None
+
+    def _column(self, instant: int) -> float:
+        return float(self.frame().x(self.seconds(instant)))
+
+    def _draw_front(self, painter: QPainter) -> None:
+        draw_ticks(painter, self.theme, self.view.rect(), self.ticks, self._column)
+        self.draw_now(painter)
+
+
+def left_date(start: int, zone: object) -> str:
+    """The date at the left edge of a window."""
+    return date_word(start, zone)  # type: ignore[arg-type]
