@@ -147,7 +147,7 @@ LIGHT_COLOURS: Final = Colours(
     wash="#e1ecee",
     support="#cfe0e3",
     support_edge="#3b7b89",
-    target="#edf1e6",
+    target="#e7eedd",
     channels=("#0072b2", "#d55e00", "#009e73", "#882255", "#332288"),
     verdicts={
         Verdict.BETTER: "#0072b2",
@@ -175,7 +175,7 @@ DARK_COLOURS: Final = Colours(
     wash="#233238",
     support="#2b4a52",
     support_edge="#6fa9b5",
-    target="#222a24",
+    target="#2a3a2f",
     channels=("#56b4e9", "#e69f00", "#009e73", "#cc79a7", "#f0e442"),
     verdicts={
         Verdict.BETTER: "#56b4e9",

@@ -133,8 +133,11 @@ class AcidBaseMap(QWidget):
         a, b = float(self._x(plot, low)), float(self._x(plot, high))
         top, foot = float(self._y(plot, ph_high)), float(self._y(plot, ph_low))
         painter.setPen(solid_pen(self.theme.colours.edge, 1.0))
-        painter.setBrush(QColor(self.theme.colours.target))
+        painter.setBrush(Qt.BrushStyle.NoBrush)
         painter.drawRect(QRectF(a, top, b - a, foot - top))
+        painter.setFont(self.theme.font(self.theme.type.caption, bold=True))
+        painter.setPen(QColor(self.theme.colours.ink))
+        painter.drawText(QRectF(a, top, b - a, foot - top), Qt.AlignmentFlag.AlignCenter, self.spec.normal_word)
 
     def _draw_line(self, painter: QPainter, plot: QRectF, line: MapLine) -> None:
         pen = solid_pen(self.theme.colours.edge, 1.0)
@@ -143,27 +146,24 @@ class AcidBaseMap(QWidget):
         painter.drawPolyline(QPolygonF(self._points(plot, line.paco2, line.ph)))
 
     def _draw_line_words(self, painter: QPainter, plot: QRectF) -> None:
-        """Each word where its line leaves the plot: at the right edge, else over the top edge."""
+        """Each word where its line leaves the plot: at the right edge, else beside its foot."""
         assert self.spec is not None
         painter.setFont(self.theme.font(self.theme.type.caption))
         painter.setPen(QColor(self.theme.colours.ink_quiet))
         height = painter.fontMetrics().height()
-        lowest, furthest = plot.top() - height, plot.left()
+        lowest = plot.top() - height
         for line in sorted(self.spec.lines, key=lambda item: -float(np.nanmax(item.ph))):
             points = [p for p in self._points(plot, line.paco2, line.ph) if plot.adjusted(-1, -1, 1, 1).contains(p)]
             if not points:
                 continue
             end, width = points[-1], painter.fontMetrics().horizontalAdvance(line.word)
-            at_right = end.x() >= plot.right() - 4
-            if at_right and end.y() - height / 2 >= lowest:
+            if end.x() < plot.right() - 4:
+                room = QRectF(end.x() + self.theme.px(8), plot.bottom() - height - 2, width + 2, height)
+            elif end.y() - height / 2 >= lowest:
                 room = QRectF(plot.right() + self.theme.px(6), end.y() - height / 2, width + 2, height)
                 lowest = room.bottom()
             else:
-                first = points[0]
-                if first.y() > plot.top() + 4 or first.x() < furthest:
-                    continue
-                room = QRectF(first.x() - width / 2, plot.top() - height - 2, width + 2, height)
-                furthest = room.right() + width / 2 + self.theme.px(8)
+                continue
             painter.drawText(room, Qt.AlignmentFlag.AlignVCenter, line.word)
 
     def _draw_band_words(self, painter: QPainter, plot: QRectF) -> None:

@@ -99,30 +99,36 @@ class BracketStrip:
         painter.setPen(Qt.PenStyle.NoPen)
         painter.setBrush(QColor(c.accent))
         painter.drawRect(QRectF(round(x0) - px(2), rail - px(2), px(4), px(4)))
-        view = self.row.view
-        inside = QRectF(view.pos().x(), 0, view.rect().width(), 0)
-        self._draw_words(painter, bracket, max(xa, inside.left()), min(xb, inside.right()), top, rail)
+        area = self.layer.boundingRect()
+        low, high = max(xa, area.left()), min(xb, area.right())
+        room = min(max(self._free_until(bracket, area), high), area.right()) - low - px(4)
+        self._draw_words(painter, bracket, low, high, room, (top + rail) / 2)
+
+    def _free_until(self, bracket: Bracket, area: QRectF) -> float:
+        """Column up to which words may run beyond a short bracket: where the next one of its row begins."""
+        place = self.brackets.index(bracket)
+        after = [b for b, r in zip(self.brackets, self.rows, strict=True) if r == self.rows[place]]
+        later = [b.anchor for b in after if b.anchor > bracket.anchor]
+        return area.left() + float(self.row.frame().x(self.row.seconds(later[0]))) if later else area.right()
 
     def _draw_words(
-        self, painter: QPainter, bracket: Bracket, xa: float, xb: float, top: float, rail: float
+        self, painter: QPainter, bracket: Bracket, xa: float, xb: float, room: float, middle: float
     ) -> None:
         theme = self.row.theme
         c, px = theme.colours, theme.px
         sign = float(px(10))
         painter.setFont(theme.font(theme.type.caption, bold=True))
-        middle = (top + rail) / 2
-        room = xb - xa - px(4)
         word = fitted(painter, bracket.word, room - sign - px(6))
         width = painter.fontMetrics().horizontalAdvance(word)
         rest = room - sign - px(6) - width
         plain = theme.font(theme.type.caption)
         state = bracket.state_word if bracket.state is not None else ""
         painter.setFont(plain)
-        state_width = painter.fontMetrics().horizontalAdvance(state) + px(24)
+        state_width = painter.fontMetrics().horizontalAdvance(state) + px(26)
         if state_width > rest:
             state = ""
         total = sign + px(6) + width + (state_width if state else 0)
-        x = (xa + xb) / 2 - total / 2
+        x = max((xa + xb) / 2 - total / 2, xa)
         if room < sign:
             return
         verdict_sign(painter, theme, bracket.verdict, QRectF(x, middle - sign / 2, sign, sign))
@@ -136,5 +142,5 @@ class BracketStrip:
             gas_mark(painter, theme, bracket.state, None, x, middle, px(9))
             painter.setFont(plain)
             painter.setPen(QColor(c.ink_quiet))
-            room_of_state = QRectF(x + px(8), middle - height / 2, state_width, height)
+            room_of_state = QRectF(x + px(11), middle - height / 2, state_width, height)
             painter.drawText(room_of_state, Qt.AlignmentFlag.AlignVCenter, state)

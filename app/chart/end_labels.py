@@ -24,8 +24,8 @@ class EndLabel:
 def label_width(theme: Theme, trace: Trace) -> int:
     """Pixels for the label with a value of five figures in it."""
     bold, plain = (QFontMetricsF(theme.font(theme.type.caption, bold=b)) for b in (True, False))
-    words = bold.horizontalAdvance(trace.name + " ") + bold.horizontalAdvance("000.0 ")
-    return round(words + plain.horizontalAdvance(trace.unit)) + theme.px(44)
+    words = bold.horizontalAdvance(trace.name + " ") + bold.horizontalAdvance("000 ")
+    return round(words + plain.horizontalAdvance(trace.unit)) + theme.px(40)
 
 
 def draw_end_labels(painter: QPainter, theme: Theme, area: QRectF, labels: list[EndLabel]) -> None:
@@ -83,8 +83,8 @@ def _draw(painter: QPainter, theme: Theme, area: QRectF, label: EndLabel, want: 
     x += theme.px(16)
     height = theme.px(20)
     for word, bold, colour in (
-        (label.trace.name, not label.value, c.ink),
-        (label.value, True, c.ink),
+        (label.trace.name, True, c.ink),
+        (label.value, False, c.ink),
         (label.trace.unit if label.trace.unit != label.trace.name else "", False, c.ink_quiet),
     ):
         if word:

@@ -73,10 +73,11 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
     states = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.state_word, lane.verdict_word)]
     dues = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.due_word, lane.flag_word)]
     state = min(max([*states, px(60)]) + px(44), width * 0.2)
-    due = min(max([*dues, px(60)]) + px(44), width * 0.24)
+    due = min(max([*dues, px(60)]) + px(56), width * 0.24)
     folded = width - left - state - due < px(_LEAST_CLOCK)
     if folded:
-        state = max(state, due)
+        longest = max([*states, *dues, px(60)])
+        state = min(longest + px(56), width * 0.36)
     head, gap, count = float(px(36)), float(px(6)), max(len(spec.lanes), 1)
     lane = (height - head) / count - gap
     least = px(84) if folded else px(60)
@@ -89,11 +90,15 @@ def place_items(lane: Lane, g: LaneGeometry, theme: Theme) -> list[Placed]:
     """The items of a lane in order of time, each with its place."""
     px = theme.px
     placed: list[Placed] = []
-    flag_end = float("-inf")
+    flag_end = gas_end = float("-inf")
+    gas_row = 0
     for item in sorted(lane.items, key=_order):
         x = g.x(item.at)
         if item.kind is LaneKind.GAS:
-            row, box = g.middle, _around(x, g.middle, px(20), px(24))
+            gas_row = 1 - gas_row if x < gas_end else 0  # two gases of one time stand one under the other
+            gas_end = x + px(17)
+            row = g.middle + gas_row * px(16)
+            box = _around(x, row, px(20), px(20))
         elif item.kind is LaneKind.FLAG:
             x = max(x, flag_end)
             flag_end = x + px(18)

@@ -4,7 +4,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen
 
 from app.chart.lane_layout import LaneGeometry, Placed
-from app.chart.marks import fitted, gas_mark, pennant, solid_pen, verdict_sign
+from app.chart.marks import fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
 from app.chart.row import draw_card
 from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.chart.time_ticks import ClockMark, date_word
@@ -26,11 +26,13 @@ class LanePainter:
         g, theme = self.g, self.theme
         c = theme.colours
         painter.fillRect(QRectF(0, 0, g.width, g.head), QColor(c.ground))
+        pad = theme.px(16)
+        plate = self._now_plate(painter)
         painter.setFont(theme.font(theme.type.caption))
         painter.setPen(QColor(c.ink_quiet))
-        pad = theme.px(16)
-        painter.drawText(QRectF(g.left + g.clock + pad, 0, g.right - pad, g.head), _LEFT, self.spec.state_heading)
-        plate = self._now_plate(painter)
+        left = max(g.left + g.clock + pad, plate.right() + pad)
+        heading = whole_or_none(painter, self.spec.state_heading, g.width - left)
+        painter.drawText(QRectF(left, 0, g.width - left, g.head), _LEFT, heading)
         nearest = g.left + g.clock
         for mark in self.marks:
             x = g.x(mark.at)
@@ -103,7 +105,11 @@ class LanePainter:
         painter.restore()
         self._draw_right(painter, lane)
         self._draw_now(painter)
-        self._draw_items(painter, placed, item)
+        painter.save()
+        if lane.closed:
+            painter.setOpacity(0.6)
+        self._draw_items(painter, lane, placed, item)
+        painter.restore()
         if chosen:
             self._ring(painter, card.adjusted(1, 1, -1, -1), 2.0 if focus else 1.0)
 
@@ -147,13 +153,13 @@ class LanePainter:
         if lane.closed:
             painter.setOpacity(0.55)
         for piece in lane.support:
-            self._draw_support(painter, piece.start, piece.end, piece.pressure, piece.word)
+            self._draw_support(painter, piece.start, piece.end, piece.pressure)
         painter.restore()
         for p in placed:
             if p.item.kind is LaneKind.BREAK:
                 self._draw_break(painter, p)
 
-    def _draw_support(self, painter: QPainter, start: int, end: int, pressure: float | None, word: str) -> None:
+    def _draw_support(self, painter: QPainter, start: int, end: int, pressure: float | None) -> None:
         g, theme = self.g, self.theme
         c = theme.colours
         a, b = max(g.x(start), g.left), min(g.x(end), g.left + g.clock)
@@ -168,13 +174,6 @@ class LanePainter:
             painter.fillRect(band, QColor(c.support))
             for y in (band.top(), band.bottom() - 1):
                 painter.fillRect(QRectF(a, y, b - a, 1), QColor(c.support_edge))
-        painter.setFont(theme.font(theme.type.caption))
-        text = fitted(painter, word, b - a - theme.px(8))
-        if text:
-            painter.setPen(QColor(c.ink_quiet))
-            height = painter.fontMetrics().height()
-            y = g.middle - g.thickest / 2 - height if pressure is not None else g.middle - height - theme.px(2)
-            painter.drawText(QRectF(a + theme.px(4), y, b - a, height), _LEFT, text)
 
     def _draw_break(self, painter: QPainter, placed: Placed) -> None:
         g, theme = self.g, self.theme
@@ -187,7 +186,7 @@ class LanePainter:
         y = round(g.middle) + 0.5
         painter.drawLine(QPointF(box.left(), y), QPointF(box.right(), y))
         painter.setFont(theme.font(theme.type.caption))
-        word = fitted(painter, placed.item.word, box.width() - theme.px(4))
+        word = whole_or_none(painter, placed.item.word, box.width())
         if word:
             width, height = painter.fontMetrics().horizontalAdvance(word), painter.fontMetrics().height()
             room = QRectF(box.center().x() - width / 2 - 2, g.middle - height / 2, width + 4, height)
@@ -195,15 +194,24 @@ class LanePainter:
             painter.setPen(QColor(c.ink_quiet))
             painter.drawText(room, Qt.AlignmentFlag.AlignCenter, word)
 
-    def _draw_items(self, painter: QPainter, placed: list[Placed], chosen: LaneItem | None) -> None:
+    def _draw_items(self, painter: QPainter, lane: Lane, placed: list[Placed], chosen: LaneItem | None) -> None:
         taken: list[tuple[float, float]] = []
         for kind in (LaneKind.WINDOW, LaneKind.SETTING, LaneKind.FLAG, LaneKind.GAS):
             for p in placed:
                 if p.item.kind is kind:
                     self._draw_item(painter, p, taken)
+            if kind is LaneKind.SETTING:
+                self._draw_support_words(painter, lane, taken)
         for p in placed:
             if p.item is chosen:
                 self._ring(painter, p.box.adjusted(-1, -1, 1, 1), 2.0)
+
+    def _draw_support_words(self, painter: QPainter, lane: Lane, taken: list[tuple[float, float]]) -> None:
+        painter.setFont(self.theme.font(self.theme.type.caption))
+        for piece in lane.support:
+            left, end = max(self.g.x(piece.start), self.g.left), self.g.x(piece.end)
+            word = whole_or_none(painter, piece.word, end - left)
+            self._words(painter, word, left, self.g.lane - self.theme.px(19), QColor(self.theme.colours.ink_quiet), taken)
 
     def _draw_item(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
         item, theme = placed.item, self.theme
@@ -242,7 +250,7 @@ class LanePainter:
         foot = g.middle + g.thickest / 2
         painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
         painter.setFont(theme.font(theme.type.caption))
-        self._words(painter, placed.item.word, placed.x - 1, g.lane - theme.px(19), QColor(c.ink_quiet), taken)
+        self._words(painter, placed.item.word, placed.x + theme.px(5), g.lane - theme.px(19), QColor(c.ink_quiet), taken)
 
     def _words(
         self, painter: QPainter, word: str, left: float, top: float, ink: QColor, taken: list[tuple[float, float]]
@@ -250,11 +258,20 @@ class LanePainter:
         """Words in the lane's foot, where no others stand yet; the sentence has them in any case."""
         metrics = QFontMetricsF(painter.font())
         width, gap = metrics.horizontalAdvance(word), self.theme.px(6)
+        left = self._beside_now(left, width)
         clear = all(left + width + gap <= a or left >= b + gap for a, b in taken)
         if word and clear and left + width <= self.g.left + self.g.clock + 2:
             taken.append((left, left + width))
             painter.setPen(ink)
             painter.drawText(QRectF(left, top, width + 2, metrics.height()), _LEFT, word)
+
+    def _beside_now(self, left: float, width: float) -> float:
+        """Words that the now line would cut move to its right, or to its left where that is the edge."""
+        now, g, gap = self.spec.now, self.g, self.theme.px(6)
+        if now is None or not left - gap < g.x(now) < left + width + gap:
+            return left
+        right = g.x(now) + gap
+        return right if right + width <= g.left + g.clock else g.x(now) - gap - width
 
     def _draw_now(self, painter: QPainter) -> None:
         now, g = self.spec.now, self.g

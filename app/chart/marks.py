@@ -198,11 +198,17 @@ def hatch(ink: QColor) -> QBrush:
     return QBrush(ink, Qt.BrushStyle.BDiagPattern)
 
 
+def whole_or_none(painter: QPainter, text: str, width: float) -> str:
+    """The text if it fits, else nothing; for words that an ellipsis would make unreadable."""
+    return text if painter.fontMetrics().horizontalAdvance(text) <= width else ""
+
+
 def fitted(painter: QPainter, text: str, width: float) -> str:
-    """The text if it fits, else with an ellipsis, else nothing where not even four characters would fit."""
+    """The text if it fits, with an ellipsis if most of it does, else nothing: a stump says less than a mark."""
     metrics = painter.fontMetrics()
-    if metrics.horizontalAdvance(text) <= width:
+    whole = metrics.horizontalAdvance(text)
+    if whole <= width:
         return text
-    if width < metrics.averageCharWidth() * 4:
+    if width < whole * 0.6:
         return ""
     return metrics.elidedText(text, Qt.TextElideMode.ElideRight, int(width))

@@ -9,7 +9,8 @@ from PySide6.QtGui import QColor, QPainter, QPolygonF
 from app.chart.brackets import BracketStrip
 from app.chart.curve import DrawnTrace
 from app.chart.end_labels import EndLabel, draw_end_labels, label_width
-from app.chart.marks import fitted, hatch, solid_pen, spot
+from app.chart.marks import hatch, solid_pen, spot
+from app.chart.panel_header import PanelHeader
 from app.chart.row import ClockRow, Margins, visible
 from app.chart.shapes import Area, Look, PanelSpec, Reading, Scale, Span
 from app.chart.time_ticks import ClockMark
@@ -26,7 +27,9 @@ class PanelRow(ClockRow):
     height and read at the right, where the unit stands over its own figures.
     """
 
-    brackets: BracketStrip | None = None  # pyqtgraph asks for sizes before the traces are made
+    # pyqtgraph asks for sizes before these are made
+    brackets: BracketStrip | None = None
+    header: PanelHeader | None = None
     window: tuple[int, int] = (0, 1)
 
     def __init__(self, spec: PanelSpec, theme: Theme, origin: int) -> None:
@@ -40,6 +43,7 @@ class PanelRow(ClockRow):
             for curve in drawn.curves:
                 self.item.addItem(curve, ignoreBounds=True)
         self.brackets = BracketStrip(self, spec.brackets) if spec.brackets else None
+        self.header = PanelHeader(self)
 
     def _drawn(self, place: int) -> DrawnTrace:
         trace, c = self.spec.traces[place], self.theme.colours
@@ -74,18 +78,25 @@ class PanelRow(ClockRow):
         words = self.metrics()
         return round(max(words.horizontalAdvance(widest + "0"), words.horizontalAdvance(scale.unit))) + self.theme.px(16)
 
+    def _own_axis(self) -> int:
+        """Pixels the second scale takes; a row without one has its labels at the view's very edge."""
+        return self.margins.axis_right if len(self.spec.scales) > 1 else 0
+
     def gutter_wanted(self) -> int:
         return max((label_width(self.theme, d.trace) for d in self.traces), default=0)
 
     def set_margins(self, margins: Margins) -> None:
         super().set_margins(margins)
-        if self.brackets:
-            self.brackets.layer.resized()
+        self._strips_resized()
+
+    def _strips_resized(self) -> None:
+        for strip in (self.brackets, self.header):
+            if strip is not None:
+                strip.layer.resized()
 
     def _view_resized(self, _view: object = None) -> None:
         super()._view_resized(_view)
-        if self.brackets:
-            self.brackets.layer.resized()
+        self._strips_resized()
 
     # the clock
 
@@ -97,8 +108,9 @@ class PanelRow(ClockRow):
             for curve in drawn.curves:
                 curve.show_window(start, end, width)
         self.gutter.update()
-        if self.brackets:
-            self.brackets.layer.update()
+        for strip in (self.brackets, self.header):
+            if strip is not None:
+                strip.layer.update()
 
     def use_pen_scale(self, scale: float) -> None:
         """Draws at `scale` dots per pixel: finer envelope, pens as wide as they look on the screen."""
@@ -142,7 +154,7 @@ class PanelRow(ClockRow):
             painter.drawText(QRectF(x, round(top + y) - 12, width, 24), side | Qt.AlignmentFlag.AlignVCenter, word)
             if right:
                 painter.fillRect(QRectF(round(edge), round(top + y), theme.px(4), 1), QColor(c.edge))
-        if len(self.spec.scales) > 1 or self.spec.traces and scale.unit not in {t.name for t in self.spec.traces}:
+        if len(self.spec.scales) > 1 or scale.unit not in {trace.name for trace in self.spec.traces}:
             heading = QRectF(x, 0, width, theme.px(28))
             painter.drawText(heading, side | Qt.AlignmentFlag.AlignVCenter, scale.unit)
 
@@ -166,15 +178,10 @@ class PanelRow(ClockRow):
 
     def _draw_bands(self, painter: QPainter) -> None:
         frame, c = self.frame(), self.theme.colours
-        painter.setFont(self.theme.font(self.theme.type.caption))
         for band in self.spec.bands:
             gain, offset = self._to_first(self._scale(band.unit))
             top, foot = (float(np.clip(frame.y(v * gain + offset), 0, frame.height)) for v in (band.high, band.low))
             painter.fillRect(QRectF(0, top, frame.width, foot - top), QColor(c.target))
-            painter.setPen(QColor(c.ink_quiet))
-            room = QRectF(self.theme.px(8), top, frame.width, max(foot - top, 0))
-            if band.word and room.height() >= painter.fontMetrics().height():
-                painter.drawText(room, Qt.AlignmentFlag.AlignVCenter | Qt.AlignmentFlag.AlignLeft, band.word)
 
     def _draw_area(self, painter: QPainter, area: Area) -> None:
         frame, c = self.frame(), self.theme.colours
@@ -206,14 +213,6 @@ class PanelRow(ClockRow):
         if b <= a:
             return
         painter.fillRect(QRectF(a, 0, max(b - a, 1), frame.height), hatch(theme.colour("edge", 0.45)))
-        painter.setFont(theme.font(theme.type.caption))
-        word = fitted(painter, span.word, b - a - theme.px(16))
-        if word:
-            width, height = painter.fontMetrics().horizontalAdvance(word), painter.fontMetrics().height()
-            room = QRectF(a + theme.px(4), theme.px(2), width + theme.px(8), height)
-            painter.fillRect(room, QColor(theme.colours.raised))
-            painter.setPen(QColor(theme.colours.ink_quiet))
-            painter.drawText(room, Qt.AlignmentFlag.AlignCenter, word)
 
     def _draw_front(self, painter: QPainter) -> None:
         painter.save()
@@ -268,7 +267,8 @@ class PanelRow(ClockRow):
             if self.crossed is not None:
                 word = "\u2013" if i is None else value_word(float(drawn.v[i]), drawn.trace.decimals)
             labels.append(EndLabel(drawn.trace, drawn.ink, drawn.spotted, y, word))
-        area = QRectF(self.item.rect().right() - self.margins.gutter, self.view.pos().y(), self.margins.gutter, frame.height)
+        left = self.view.pos().x() + frame.width + self._own_axis()
+        area = QRectF(left, self.view.pos().y(), self.item.rect().right() - left, frame.height)
         draw_end_labels(painter, self.theme, area, labels)
 
     def picked(self, at: QPointF) -> object | None:

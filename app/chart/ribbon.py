@@ -12,11 +12,16 @@ import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 
-from app.chart.marks import fitted, hatch, solid_pen
+from app.chart.end_labels import EndLabel, draw_end_labels, label_width
+from app.chart.marks import hatch, solid_pen, whole_or_none
 from app.chart.panel import PanelRow
 from app.chart.row import FRONT, Frame, Layer, visible
-from app.chart.shapes import PanelSpec, RibbonSpec, RibbonStep, Scale, Tick
+from app.chart.shapes import PanelSpec, RibbonSpec, RibbonStep, Scale, Tick, Trace
+from app.chart.value_ticks import value_word
 from app.theme import Theme
+
+_NONE = np.empty(0)
+_LEVELS = {name: Trace(name, name, "cmH\u2082O", _NONE.astype(np.int64), _NONE) for name in ("IPAP", "EPAP", "CPAP")}
 
 
 class RibbonRow(PanelRow):
@@ -60,6 +65,25 @@ class RibbonRow(PanelRow):
         return near[-1] if near else None
 
     # drawing
+
+    def gutter_wanted(self) -> int:
+        return max(label_width(self.theme, trace) for trace in _LEVELS.values())
+
+    def _draw_gutter(self, painter: QPainter) -> None:
+        """The pressures in force under the crosshair, else at the end of what is in view."""
+        last = min(self.window[1], max((step.end for step in self.steps), default=0)) - 1
+        step = self.step_at(last if self.crossed is None else self.origin + round(self.crossed * 1e6))
+        if step is None or step.epap is None:
+            return
+        levels = {"CPAP": step.epap} if step.ipap is None else {"IPAP": step.ipap, "EPAP": step.epap}
+        frame, ink = self.frame(), QColor(self.theme.colours.support_edge)
+        labels = [
+            EndLabel(_LEVELS[name], ink, False, float(frame.y(level)), value_word(level, 0 if level % 1 == 0 else 1))
+            for name, level in levels.items()
+        ]
+        left = self.view.pos().x() + frame.width
+        area = QRectF(left, self.view.pos().y(), self.item.rect().right() - left, frame.height)
+        draw_end_labels(painter, self.theme, area, labels)
 
     def _draw_front(self, painter: QPainter) -> None:
         frame = self.frame()
@@ -127,7 +151,7 @@ class RibbonRow(PanelRow):
         c = self.theme.colours
         for gap in self.breaks:
             a, b = visible(frame, self.seconds(gap.start), self.seconds(gap.end))
-            word = fitted(painter, gap.word, b - a - 4)
+            word = whole_or_none(painter, gap.word, b - a - 4)
             painter.setPen(QColor(c.ink_quiet))
             if word:
                 painter.drawText(QRectF(a, 0, b - a, frame.height), Qt.AlignmentFlag.AlignCenter, word)
@@ -140,6 +164,8 @@ class RibbonRow(PanelRow):
             a, b = visible(frame, self.seconds(run[0].start), self.seconds(run[-1].end))
             a, b = self._clear_of_breaks(frame, a, b)
             width = painter.fontMetrics().horizontalAdvance(word)
+            if not known and b - a < width + px(8):  # unknown is said in any case, if only by its sign
+                word, width = "?", painter.fontMetrics().horizontalAdvance("?")
             if not word or b - a < width + px(8):
                 continue
             step = run[0]
@@ -170,14 +196,14 @@ class RibbonRow(PanelRow):
         height = painter.fontMetrics().height()
         for run in _runs(seen, _mode_of):
             a, b = visible(frame, self.seconds(run[0].start), self.seconds(run[-1].end))
-            word = fitted(painter, run[0].mode or run[0].word, b - a - self.theme.px(8))
+            word = whole_or_none(painter, _mode_of(run[0]), b - a - self.theme.px(8))
             width = painter.fontMetrics().horizontalAdvance(word)
             under = [s for s in run if float(frame.x(self.seconds(s.start))) < a + width]
             tops = [_top(s) for s in under]
             above = max((t for t in tops if t is not None), default=0.0)
             foot = max(float(frame.y(above)) - 3, height)
             painter.setPen(QColor(self.theme.colours.ink))
-            room = QRectF(a + self.theme.px(4), foot - height, width + 2, height)
+            room = QRectF(a + self.theme.px(6), foot - height, width + 2, height)
             painter.drawText(room, Qt.AlignmentFlag.AlignLeft, word)
 
     def _draw_strip(self, painter: QPainter) -> None:
@@ -189,22 +215,28 @@ class RibbonRow(PanelRow):
 
 
 def draw_ticks(
-    painter: QPainter, theme: Theme, area: QRectF, ticks: tuple[Tick, ...], column: Callable[[int], float]
+    painter: QPainter, theme: Theme, area: QRectF, ticks: tuple[Tick, ...], column: Callable[[int], float],
+    lines: int = 1,
 ) -> None:
-    """Small ticks along the foot of an area; words at the right of each as far as the next one lets them."""
+    """Small ticks in an area with their words at the right, on the first of some lines that is free there."""
     c, px = theme.colours, theme.px
     painter.setFont(theme.font(theme.type.caption))
+    ends, height = [float("-inf")] * lines, area.height() / lines
     places = [column(tick.at) for tick in ticks]
     for n, (tick, x) in enumerate(zip(ticks, places, strict=True)):
-        if not area.left() - px(80) <= x <= area.right():
+        until = places[n + 1] if lines == 1 and n + 1 < len(places) else area.right()
+        if not area.left() - px(160) <= x <= area.right():
             continue
-        painter.fillRect(QRectF(round(x), area.bottom() - px(8), 2, px(8)), QColor(c.ink_quiet))
-        end = places[n + 1] if n + 1 < len(places) else area.right()
-        word = fitted(painter, tick.word, end - x - px(10))
-        pen = QColor(c.ink_quiet if tick.doubtful else c.ink)
-        painter.setPen(pen)
-        room = QRectF(x + px(5), area.top(), max(end - x, 1), area.height() - px(2))
-        painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, word)
+        width = painter.fontMetrics().horizontalAdvance(tick.word)
+        line = next((n for n, end in enumerate(ends) if end <= x - px(2)), None)
+        top = area.top() + (line or 0) * height
+        painter.fillRect(QRectF(round(x), top + height - px(10), 2, px(8)), QColor(c.ink_quiet))
+        if line is None or x + px(6) + width > until:
+            continue  # only the tick: words one over the other could be read by nobody
+        ends[line] = x + px(6) + width + px(6)
+        painter.setPen(QColor(c.ink_quiet if tick.doubtful else c.ink))
+        room = QRectF(x + px(6), top, width + 2, height)
+        painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, tick.word)
 
 
 def _top(step: RibbonStep) -> float | None:

@@ -200,8 +200,8 @@ class ClockRow:
         return self.view.rect()
 
     def _right_side(self) -> QRectF:
-        whole = self.item.rect()
-        return QRectF(whole.right() - self.margins.right, 0, self.margins.right, whole.height())
+        whole, left = self.item.rect(), self.margins.right
+        return QRectF(whole.right() - left, 0, left, whole.height())
 
     def _item_resized(self) -> None:
         self.card.resized()

@@ -16,7 +16,7 @@ from app.chart.time_ticks import MINUTE, date_word, time_ticks
 from app.theme import GRID, Theme
 
 LEAST_SPAN = 5 * MINUTE
-_PANEL_LEAST = 120  # pixels at 100 %
+_PANEL_LEAST = 96  # pixels at 100 %
 _RIBBON_WEIGHT = 1.1
 
 
@@ -84,6 +84,7 @@ class PanelStack(pg.GraphicsView):
             self.rows.append(EventRow(spec.events, self.theme, origin))
         self.axis = TimeAxisRow(self.theme, origin)
         self.axis.now_word = spec.now_word
+        self.axis.zone = spec.zone
         self.rows.append(self.axis)
         for row in self.rows:
             row.now = spec.now

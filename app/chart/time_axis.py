@@ -1,14 +1,15 @@
 """The one visible time axis of a stack, and the row of events above it."""
 
 from collections.abc import Sequence
+from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 
 from app.chart.ribbon import draw_ticks
 from app.chart.row import FRONT, ClockRow, Layer
-from app.chart.shapes import Tick
-from app.chart.time_ticks import ClockMark, date_word
+from app.chart.shapes import MICROSECONDS, Tick
+from app.chart.time_ticks import ClockMark, time_word
 from app.theme import Theme
 
 
@@ -18,6 +19,7 @@ class TimeAxisRow(ClockRow):
     def __init__(self, theme: Theme, origin: int) -> None:
         super().__init__("", theme, origin)
         self.now_word = ""
+        self.zone: ZoneInfo | None = None
         self.left_word = ""
         self.labels = Layer(self.item, FRONT, self._whole, self._draw_labels)
 
@@ -63,7 +65,7 @@ class TimeAxisRow(ClockRow):
     def _draw_labels(self, painter: QPainter) -> None:
         frame, theme = self.frame(), self.theme
         c, left, height = theme.colours, self.view.pos().x(), self.height()
-        now = self._now_plate(painter, left, height)
+        plates = self._plates(painter, height)
         nearest = left
         for mark in self.marks:
             if not mark.label:
@@ -72,7 +74,7 @@ class TimeAxisRow(ClockRow):
             painter.setFont(theme.font(theme.type.caption, bold=mark.midnight))
             width = painter.fontMetrics().horizontalAdvance(mark.label) + 2
             room = QRectF(x - width / 2, 0, width, height)
-            if now is not None and room.adjusted(-4, 0, 4, 0).intersects(now):
+            if any(room.adjusted(-4, 0, 4, 0).intersects(plate) for plate in plates):
                 continue
             painter.setPen(QColor(c.ink if mark.midnight else c.ink_quiet))
             painter.drawText(room, Qt.AlignmentFlag.AlignCenter, mark.label)
@@ -84,26 +86,39 @@ class TimeAxisRow(ClockRow):
             side = Qt.AlignmentFlag.AlignLeft if nearest < left else Qt.AlignmentFlag.AlignRight
             painter.drawText(room, side | Qt.AlignmentFlag.AlignVCenter, self.left_word)
 
-    def _now_plate(self, painter: QPainter, left: float, height: float) -> QRectF | None:
-        """The word at the now line, on a plate of the accent; returns the room it takes."""
-        if self.now is None or not self.now_word:
-            return None
-        frame, theme = self.frame(), self.theme
-        x = float(frame.x(self.seconds(self.now)))
+    def point_at(self, instant: int | None) -> None:
+        super().point_at(instant)
+        self.labels.update()
+
+    def _plates(self, painter: QPainter, height: float) -> list[QRectF]:
+        """The words at the now line and at the crosshair, each on a plate; returns the room they take."""
+        c, plates = self.theme.colours, []
+        if self.now is not None and self.now_word:
+            plates.append(self._plate(painter, self.seconds(self.now), self.now_word, c.accent, c.on_accent, height))
+        if self.crossed is not None and self.zone is not None:
+            word = time_word(self.origin + round(self.crossed * MICROSECONDS), self.zone)
+            plates.append(self._plate(painter, self.crossed, word, c.ink, c.raised, height))
+        return [plate for plate in plates if not plate.isEmpty()]
+
+    def _plate(
+        self, painter: QPainter, seconds: float, word: str, fill: str, ink: str, height: float
+    ) -> QRectF:
+        frame, theme, left = self.frame(), self.theme, self.view.pos().x()
+        x = float(frame.x(seconds))
         if not -1 <= x <= frame.width + 1:
-            return None
+            return QRectF()
         painter.setFont(theme.font(theme.type.caption, bold=True))
-        width = painter.fontMetrics().horizontalAdvance(self.now_word) + theme.px(12)
+        width = painter.fontMetrics().horizontalAdvance(word) + theme.px(12)
         at = min(left + x - width / 2, self.item.rect().width() - width)
         plate = QRectF(round(at), theme.px(4), width, height - theme.px(8))
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         painter.setPen(Qt.PenStyle.NoPen)
-        painter.setBrush(QColor(theme.colours.accent))
+        painter.setBrush(QColor(fill))
         painter.drawRoundedRect(plate, theme.px(4), theme.px(4))
         painter.restore()
-        painter.setPen(QColor(theme.colours.on_accent))
-        painter.drawText(plate, Qt.AlignmentFlag.AlignCenter, self.now_word)
+        painter.setPen(QColor(ink))
+        painter.drawText(plate, Qt.AlignmentFlag.AlignCenter, word)
         return plate
 
 
@@ -121,7 +136,7 @@ class EventRow(ClockRow):
         return self.theme.px(4)
 
     def height(self) -> int:
-        return self.theme.px(32)
+        return self.theme.px(48)
 
     def picked(self, at: QPointF) -> object | None:
         frame = self.frame()
@@ -132,10 +147,5 @@ class EventRow(ClockRow):
         return float(self.frame().x(self.seconds(instant)))
 
     def _draw_front(self, painter: QPainter) -> None:
-        draw_ticks(painter, self.theme, self.view.rect(), self.ticks, self._column)
+        draw_ticks(painter, self.theme, self.view.rect(), self.ticks, self._column, lines=2)
         self.draw_now(painter)
-
-
-def left_date(start: int, zone: object) -> str:
-    """The date at the left edge of a window."""
-    return date_word(start, zone)  # type: ignore[arg-type]

@@ -1,0 +1,80 @@
+"""What stands in a panel's title line besides its title: what its bands mean, and why a stretch is in doubt."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QRectF, Qt
+from PySide6.QtGui import QColor, QPainter
+
+from app.chart.marks import hatch, solid_pen
+from app.chart.row import FRONT, Layer
+
+if TYPE_CHECKING:
+    from app.chart.panel import PanelRow
+
+_LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
+
+
+class PanelHeader:
+    """Words in the title line, so that none of them covers a value."""
+
+    def __init__(self, row: PanelRow) -> None:
+        self.row = row
+        self.layer = Layer(row.item, FRONT, self._area, self._draw, clipped=True)
+
+    def _area(self) -> QRectF:
+        view = self.row.view
+        return QRectF(view.pos().x(), 0, view.rect().width(), self.row.theme.px(28))
+
+    def _draw(self, painter: QPainter) -> None:
+        row, theme = self.row, self.row.theme
+        bold = row.metrics(bold=True, size=theme.type.body)
+        taken = [(0.0, bold.horizontalAdvance(row.title) + theme.px(24))]
+        painter.setFont(theme.font(theme.type.caption))
+        painter.translate(self._area().left(), 0)
+        key = taken[0][1]
+        for word, dashed in [(b.word, False) for b in row.spec.bands] + [(a.word, True) for a in row.spec.areas]:
+            if word:
+                key += self._draw_key(painter, word, key, dashed=dashed)
+        taken.append((taken[0][1], key))
+        for drawn in row.traces:
+            for span in drawn.trace.doubts:
+                x = float(row.frame().x(row.seconds(span.start)))
+                end = float(row.frame().x(row.seconds(span.end)))
+                self._draw_doubt(painter, span.word, x, end, taken)
+
+    def _draw_key(self, painter: QPainter, word: str, x: float, *, dashed: bool) -> float:
+        """A swatch and its word; returns the pixels taken."""
+        theme, c, metrics = self.row.theme, self.row.theme.colours, painter.fontMetrics()
+        swatch = QRectF(round(x) + 0.5, theme.px(9) + 0.5, theme.px(14), theme.px(9))
+        painter.setBrush(theme.colour("ink_quiet", 0.12) if dashed else QColor(c.target))
+        pen = solid_pen(c.ink_quiet if dashed else c.edge, 1.0)
+        if dashed:
+            pen.setDashPattern([2, 2])
+        painter.setPen(pen)
+        painter.drawRect(swatch)
+        painter.setPen(QColor(c.ink_quiet))
+        left = swatch.right() + theme.px(6)
+        width = metrics.horizontalAdvance(word)
+        painter.drawText(QRectF(left, 0, width + 2, theme.px(28)), _LEFT, word)
+        return left + width + theme.px(20) - x
+
+    def _draw_doubt(
+        self, painter: QPainter, word: str, x: float, end: float, taken: list[tuple[float, float]]
+    ) -> None:
+        """The reason over the hatched stretch, moved along the line to where it can stand."""
+        theme, frame = self.row.theme, self.row.frame()
+        width = painter.fontMetrics().horizontalAdvance(word) + theme.px(20)
+        if end < 0 or x > frame.width or not word:
+            return
+        left = min(max(x, 0.0), frame.width - width)
+        for a, b in sorted(taken):
+            if left < b and left + width > a:
+                left = b
+        if left + width > frame.width or left > max(end, x + theme.px(120)):
+            return  # no room near its stretch; the readout says it
+        taken.append((left, left + width))
+        painter.fillRect(QRectF(left, theme.px(9), theme.px(14), theme.px(10)), hatch(QColor(theme.colours.edge)))
+        painter.setPen(QColor(theme.colours.ink_quiet))
+        painter.drawText(QRectF(left + theme.px(20), 0, width, theme.px(28)), _LEFT, word)
