@@ -1,0 +1,54 @@
+"""Every sentence: a message key with named values becomes text. The one place where core's findings get words.
+
+Text made here is plain. Where Qt could take it for rich text, pass it through `app.formats.inert`.
+"""
+
+from __future__ import annotations
+
+import logging
+from collections.abc import Mapping
+from functools import lru_cache
+from types import MappingProxyType
+
+from app.words.template import Reader, fill
+from core.record.message import Message
+
+__all__ = ["Reader", "sentence", "templates"]
+
+_log = logging.getLogger("luffmark")
+DEFAULT = Reader()
+
+
+@lru_cache(maxsize=1)
+def templates() -> Mapping[str, str]:
+    """Every template by its message key.
+
+    Raises:
+        ValueError: two catalogues name the same key.
+    """
+    from app.words import findings, refusals, responses, surroundings
+
+    found: dict[str, str] = {}
+    for catalogue in (refusals, surroundings, findings, responses):
+        twice = found.keys() & catalogue.TEMPLATES.keys()
+        if twice:
+            raise ValueError(f"message keys with two templates: {', '.join(sorted(twice))}")
+        found |= catalogue.TEMPLATES
+    return MappingProxyType(found)
+
+
+def sentence(message: Message, reader: Reader = DEFAULT) -> str:
+    """The message in words, its first letter large where a template begins with a name.
+
+    A key without words is shown with its values rather than hidden: a finding must not vanish.
+
+    >>> sentence(Message("value.missing", {"channel": "rr", "accepted": "a number"}))
+    'Respiratory rate has no value. Accepted: a number.'
+    """
+    template = templates().get(message.key)
+    if template is None:
+        _log.warning("no words for message %s", message.key)
+        values = ", ".join(f"{k} {v}" for k, v in message.values.items())
+        return f"{message.key}: {values}" if values else message.key
+    text = fill(reader.translate(template), message.values, reader)
+    return text[:1].upper() + text[1:] if template.startswith("{") and text[:2] != "pH" else text

@@ -1,0 +1,66 @@
+"""What goes wrong with files, disks and stores, and what to do then. No driver's words stand alone."""
+
+from typing import Final
+
+_CHAIN = (
+    "missing_batch=a batch is missing;previous_hash=it does not follow the one before;"
+    "batch_facts=its facts were changed;missing_rows=rows are missing;"
+    "rows_of_another_batch=rows were moved between batches;rows_changed=rows were changed;"
+    "recorded_at=its recording time steps back"
+)
+
+TEMPLATES: Final[dict[str, str]] = {
+    "error.unexpected": "Something went wrong in the program: {detail}. Nothing was recorded by this step.",
+    "file.binary": "The file is not text: it holds NUL bytes. Accepted: {accepted}.",
+    "file.disk_full": "The disk is full: [[{path} ]]could not be written. Make room and try again.",
+    "file.empty": "The file is empty. Its first line must be a header: {accepted}.",
+    "file.encoding": "The text is {found}. Accepted: {accepted}.",
+    "file.failed": "{path} cannot be used: {detail}.",
+    "file.is_folder": "{path} is a folder. Name a file.",
+    "file.missing": "{path} is not there.",
+    "file.name_too_long": "The name {path} is too long for this disk.",
+    "file.not_allowed": "{path} may not be opened or written by you. Choose another place or ask who owns it.",
+    "file.read_only_disk": "{path} lies on a disk that takes no writing. Choose another place.",
+    "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
+    "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}). "
+        "Put the key file of a backup in its place.",
+    "key.envelope_missing": "The key file {path} that belongs beside the store is not there. "
+        "Put it back, or that of a backup.",
+    "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
+        "Update the program.",
+    "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
+    "store.backup_failed": "The backup {path} could not be written: {detail}.",
+    "store.busy": "{path} is busy: another program is writing ({detail}). Try again in a moment.",
+    "store.cannot_open": "{path} cannot be opened: {detail}.",
+    "store.damaged": "{path} is damaged: {detail}. Restore the newest backup into a new store.",
+    "store.damaged_chunk": "A block of device samples is damaged. Run verify, and restore a backup.",
+    "store.disk_error": "The disk failed while {path} was used: {detail}.",
+    "store.disk_full": "The disk is full: nothing was recorded in {path}. Make room and try again.",
+    "store.exists": "{path} exists already and is never overwritten. Name another file.",
+    "store.failed": "{path} could not be used: {detail}.",
+    "store.file_gone": "{path} is no longer there. Was it moved, or a disk taken out?",
+    "store.missing": "There is no store {path}. Take in a file to make one, or name another.",
+    "store.needs_passphrase": "{path} is encrypted. Give its passphrase (--passphrase-fd N).",
+    "store.network_share": "{path} lies on a network share ({kind}), where locks cannot be relied on. "
+        "Use a local disk.",
+    "store.newer": "{path} is of format {format}; this program reads up to {accepted}. Update the program.",
+    "store.no_folder": "The folder {path} is not there.",
+    "store.not_a_store": "{path} is not a store of this program.",
+    "store.not_encrypted": "{path} is not encrypted, so it has no passphrase.",
+    "store.older": "{path} is of the older format {format}; this program reads {accepted}. Migrate it first.",
+    "store.read_only": "{path} is open for reading only: nothing can be recorded.",
+    "store.read_only_place": "{path} lies where you may not write: it is open for reading only.",
+    "store.restore_failed": "The store {path} could not be made from the backup: {detail}.",
+    "store.trigger": "A safeguard of the store is not as it should be ({name}: {what}): "
+        "it is open for reading only. Run verify.",
+    "verify.chain": "The chain breaks at batch {batch}: {what:pick " + _CHAIN + "}.",
+    "verify.chunk": "Device samples of {channel:name} in episode {episode} are damaged (row {seq}).",
+    "verify.derived": "The table {table} does not agree with the ledger for {count} episode(s), "
+        "first {episode}.",
+    "verify.document": "Document {id} is damaged (row {seq}).",
+    "verify.entry": "Entry {seq} breaks a rule: {what}.",
+    "verify.orphan": "Row {seq} claims batch {batch}, which does not own it.",
+    "verify.pages": "The file is damaged: {detail}.",
+    "verify.trigger": "The safeguard {name} is not as it should be: {what}.",
+    "verify.unreadable": "The store cannot be read to its end: {path}[[ ({detail})]].",
+}  # fmt: skip

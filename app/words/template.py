@@ -1,0 +1,197 @@
+"""Sentences with named values: how a template and a message become text.
+
+    "{channel:name} {value} is below {low:0}."     a value, and after the colon how it is written
+    "[[ Recorded by {by}.]]"                        left out when a value inside is absent
+    "{where:pick below=under;above=over}"          a word for a value that is one of a few
+
+How values are written (see `_WRITERS`): `time` an instant, `clock` its hour and minute, `0` to `3` fixed
+decimals, `+2` with sign, `trim` at most two decimals, `gas` a gas pressure in the reader's unit, `gas+` with sign,
+`fraction` an FiO2 in per cent, `name` a channel's name, `unit` its unit, `of` a value of the channel named in
+`channel`, `q` of the quantity named in `quantity`, `minutes` a length of time, `hours`, `list`.
+"""
+
+from __future__ import annotations
+
+import logging
+import re
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from math import isnan
+
+from app import formats
+from core.record.channels import CHANNELS
+from core.record.message import Value
+
+_log = logging.getLogger("luffmark")
+
+FIELD = re.compile(r"\{(\w+)(?::([^{}]*))?\}")
+_OPTIONAL = re.compile(r"\[\[(.*?)\]\]", re.DOTALL)
+MISSING = "?"
+
+
+@dataclass(frozen=True, slots=True)
+class Reader:
+    """Whom a sentence is for: the zone of wall-clock times, the unit of gas pressures, the language.
+
+    `translate` turns a template into the reader's language; the identity by default.
+    """
+
+    zone: str = "UTC"
+    gas_unit: str = "mmHg"
+    translate: Callable[[str], str] = str
+
+    def name(self, channel: str) -> str:
+        """What a channel or computed quantity is called inside a sentence."""
+        return self.translate(quantity_name(channel))
+
+
+Writer = Callable[[Value, Mapping[str, Value], Reader], str]
+
+
+def quantity_name(key: str) -> str:
+    """The name of a channel or of a computed quantity, as it stands inside a sentence.
+
+    >>> quantity_name("rr"), quantity_name("pf"), quantity_name("pao2")
+    ('respiratory rate', 'P/F', 'PaO2')
+    """
+    if key in _QUANTITIES:
+        return _QUANTITIES[key]
+    known = CHANNELS.get(key)
+    if known is None:
+        return key.replace("_", " ")
+    return known.name if any(c.isupper() for c in known.name[1:]) else known.name[0].lower() + known.name[1:]
+
+
+_QUANTITIES = {
+    "ph": "pH", "pf": "P/F", "sf": "S/F", "rox": "ROX", "hacor": "HACOR", "hacor_updated": "updated HACOR",
+    "news2": "NEWS2", "ps": "pressure support", "pressure_support": "pressure support", "aa": "A-a gradient",
+    "sbe": "standard base excess", "hco3_calculated": "calculated bicarbonate", "oxygen": "oxygen",
+}  # fmt: skip
+
+
+def fill(template: str, values: Mapping[str, Value], reader: Reader) -> str:
+    """The sentence of a template. A value that is not there is written `?` and logged; it never raises."""
+
+    def optional(match: re.Match[str]) -> str:
+        absent = any(_is_absent(values.get(f[1])) for f in FIELD.finditer(match[1]))
+        return "" if absent else match[1]
+
+    def field(match: re.Match[str]) -> str:
+        if match[1] not in values:
+            _log.warning("no value %s for %r", match[1], template)
+            return MISSING
+        return write(values[match[1]], match[2] or "", values, reader)
+
+    return FIELD.sub(field, _OPTIONAL.sub(optional, template))
+
+
+def fields(template: str) -> frozenset[str]:
+    """The values that a template cannot do without."""
+    return frozenset(m[1] for m in FIELD.finditer(_OPTIONAL.sub("", template)))
+
+
+def all_fields(template: str) -> frozenset[str]:
+    """Every value that a template names."""
+    return frozenset(m[1] for m in FIELD.finditer(template))
+
+
+def _is_absent(value: Value) -> bool:
+    return value is None or value == "" or (isinstance(value, float) and isnan(value))
+
+
+def write(value: Value, how: str, values: Mapping[str, Value], reader: Reader) -> str:
+    """One value as `how` says."""
+    if how.startswith("pick "):
+        return _picked(value, how[5:])
+    if _is_absent(value):
+        return reader.translate(formats.ABSENT)
+    writer = _WRITERS.get(how)
+    if writer is None:
+        raise ValueError(f"{how!r} is no way to write a value; accepted: {', '.join(_WRITERS)}")
+    try:
+        return writer(value, values, reader)
+    except (TypeError, ValueError):
+        _log.warning("value %r cannot be written as %s", value, how)
+        return str(value)
+
+
+def _picked(value: Value, choices: str) -> str:
+    words = dict(pair.split("=", 1) for pair in choices.split(";"))
+    if value is None or isinstance(value, bool):
+        key = {True: "yes", False: "no", None: "none"}[value]
+    else:
+        key = value if isinstance(value, str) else formats.trimmed(value)
+    return words.get(key, words.get("else", str(value)))
+
+
+def _number(value: Value) -> float:
+    if isinstance(value, bool) or value is None:
+        raise TypeError(value)
+    return float(value)
+
+
+def _plain(value: Value, _values: Mapping[str, Value], _reader: Reader) -> str:
+    if isinstance(value, bool):
+        return "yes" if value else "no"
+    return value if isinstance(value, str) else formats.trimmed(_number(value))
+
+
+def _of_channel(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
+    amount = value if isinstance(value, str) else _number(value)
+    return formats.quantity(str(values.get("channel", "")), amount, reader.gas_unit)
+
+
+def quantity_text(quantity: str, value: float, reader: Reader, *, sign: bool = False, noise: bool = False) -> str:
+    """A value of pH, PaCO2, P/F, rate or SpO2 with its unit; noise limits keep the digits they need."""
+    if quantity == "ph":
+        return (formats.signed if sign else formats.fixed)(value, 3 if noise else 2)
+    if quantity in ("paco2", "pao2"):
+        if noise and reader.gas_unit == "mmHg":
+            return f"{formats.trimmed(value, 1)} mmHg"
+        return formats.gas_pressure(value, reader.gas_unit, sign=sign)
+    text = formats.signed(value, 0) if sign else formats.trimmed(value, 1 if noise else 0)
+    unit = {"pf": "mmHg", "rr": "/min", "spo2": "%", "gcs": "", "fio2": ""}.get(quantity, "")
+    if quantity == "fio2":
+        return formats.fraction(value)
+    return f"{text} {unit}".strip()
+
+
+def _quantity(*, sign: bool = False, noise: bool = False) -> Writer:
+    def written(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
+        return quantity_text(str(values.get("quantity", "")), _number(value), reader, sign=sign, noise=noise)
+
+    return written
+
+
+def _decimals(count: int, *, sign: bool) -> Writer:
+    def written(value: Value, _values: Mapping[str, Value], _reader: Reader) -> str:
+        return (formats.signed if sign else formats.fixed)(_number(value), count)
+
+    return written
+
+
+def _listed(value: Value, _values: Mapping[str, Value], reader: Reader) -> str:
+    """Comma-separated keys as names."""
+    return ", ".join(reader.name(part.strip()) for part in str(value).split(","))
+
+
+_WRITERS: dict[str, Writer] = {
+    "": _plain,
+    "time": lambda v, _m, r: formats.wall(int(_number(v)), r.zone),
+    "clock": lambda v, _m, r: formats.clock(int(_number(v)), r.zone),
+    **{str(n): _decimals(n, sign=False) for n in range(4)},
+    **{f"+{n}": _decimals(n, sign=True) for n in range(4)},
+    "trim": lambda v, _m, _r: formats.trimmed(_number(v)),
+    "gas": lambda v, _m, r: formats.gas_pressure(_number(v), r.gas_unit),
+    "gas+": lambda v, _m, r: formats.gas_pressure(_number(v), r.gas_unit, sign=True),
+    "fraction": lambda v, _m, _r: formats.fraction(_number(v)),
+    "name": lambda v, _m, r: r.name(str(v)),
+    "unit": lambda v, _m, _r: formats.shown_unit(str(v)),
+    "of": _of_channel,
+    "q": _quantity(),
+    "q+": _quantity(sign=True),
+    "qn": _quantity(noise=True),
+    "minutes": lambda v, _m, _r: formats.minutes(_number(v)),
+    "hours": lambda v, _m, _r: formats.hours(_number(v)),
+    "list": _listed,
+}

@@ -1,0 +1,55 @@
+"""How templates and values become sentences."""
+
+import doctest
+import logging
+
+import pytest
+
+from app import words
+from app.words import Reader, sentence, template
+from core.record.instant import parse
+from core.record.message import Message
+
+
+def test_examples() -> None:
+    assert doctest.testmod(words).failed == 0
+    assert doctest.testmod(template).failed == 0
+
+
+def test_values_are_written_for_the_reader() -> None:
+    at = parse("2026-03-28T02:10:00Z")
+    message = Message("response.compared", {"quantity": "paco2", "before": 68.0, "after": 60.0, "change": -8.0,
+                                            "noise": 5.44, "direction": "down"})  # fmt: skip
+    assert sentence(message) == "PaCO2 68 mmHg to 60 mmHg (−8 mmHg): down beyond noise (noise 5.4 mmHg)."
+    assert sentence(message, Reader(gas_unit="kPa")) == (
+        "PaCO2 9.1 kPa to 8.0 kPa (−1.1 kPa): down beyond noise (noise 0.7 kPa)."
+    )
+    gained = Message("response.superseded", {"next_at": at})
+    assert sentence(gained, Reader(zone="Europe/Madrid")).endswith("28-Mar-2026 03:10.")
+
+
+def test_a_part_without_its_value_is_left_out() -> None:
+    assert template.fill("Support[[ (was {before})]].", {"before": None}, Reader()) == "Support."
+    assert template.fill("Support[[ (was {before})]].", {"before": "off"}, Reader()) == "Support (was off)."
+
+
+def test_a_missing_value_is_shown_and_logged_and_never_raises(caplog: pytest.LogCaptureFixture) -> None:
+    with caplog.at_level(logging.WARNING, "luffmark"):
+        assert template.fill("{gone} left", {}, Reader()) == "? left"
+    assert "gone" in caplog.text
+
+
+def test_a_message_without_words_is_shown_with_its_values(caplog: pytest.LogCaptureFixture) -> None:
+    with caplog.at_level(logging.WARNING, "luffmark"):
+        assert sentence(Message("no.such", {"a": 1})) == "no.such: a 1"
+    assert "no.such" in caplog.text
+
+
+def test_a_sentence_passes_through_the_readers_language() -> None:
+    reader = Reader(translate=lambda text: text.replace("is no channel", "ist kein Kanal"))
+    assert "ist kein Kanal" in sentence(Message("channel.unknown", {"channel": "x", "accepted": "y"}), reader)
+
+
+def test_markup_in_a_value_stays_text() -> None:
+    text = sentence(Message("line.word_unknown", {"word": "<b>x</b>", "accepted": "16/6"}))
+    assert "<b>x</b>" in text, "escaping is the business of the place that shows rich text"
