@@ -9,14 +9,18 @@ from __future__ import annotations
 
 from dataclasses import replace
 
+from core.judgement.anchors import Anchor, find_anchors
 from core.judgement.context import Context
 from core.judgement.gas_findings import gas_figures
 from core.judgement.policy import Policy
-from core.judgement.shapes import EpisodeFigures
+from core.judgement.response import judge_responses
+from core.judgement.score_inputs import barriers, hacor_at_gases, news2_latest
+from core.judgement.shapes import EpisodeFigures, ScoreFigure
 from core.judgement.support_findings import support_figure
 from core.record.channels import Group, Kind, by_group
 from core.record.episode import Episode
 from core.record.instant import Instant
+from core.record.message import Message
 from core.record.settings import SettingsInForce
 from core.record.support import support_time
 
@@ -33,12 +37,30 @@ def gas_stage(ctx: Context) -> Context:
     return replace(ctx, gases=gas_figures(ctx.episode.gases, ctx.settings, ctx.support, ctx.policy))
 
 
+def response_stage(ctx: Context) -> tuple[Context, tuple[Anchor, ...]]:
+    """Anchors, and what each did."""
+    anchors = find_anchors(ctx.episode, ctx.settings, ctx.support, ctx.policy)
+    return replace(ctx, responses=judge_responses(ctx, anchors)), anchors
+
+
+def score_stage(ctx: Context, anchors: tuple[Anchor, ...]) -> Context:
+    """Scores at their moments, from inputs that no anchor or break parts from them."""
+    walls = barriers(tuple(step.at for a in anchors for step in a.steps), ctx.support)
+    at_gases = hacor_at_gases(ctx, walls)
+    scores = {"news2": news2_latest(ctx, walls)}
+    scores["hacor"] = (
+        at_gases[max(at_gases)] if at_gases else ScoreFigure(reasons={"points": Message("score.no_gas", {})})
+    )
+    return replace(ctx, scores=scores, hacor_at_gases=at_gases)
+
+
 def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> EpisodeFigures:
     """Everything computed for one episode as of one moment.
 
     `episode` may hold later happenings: they are cut off first, so nothing later can leak into a figure.
     """
-    ctx = gas_stage(record_stage(episode, as_of, policy))
+    ctx, anchors = response_stage(gas_stage(record_stage(episode, as_of, policy)))
+    ctx = score_stage(ctx, anchors)
     return EpisodeFigures(
         episode=episode.key,
         as_of=as_of,
@@ -46,7 +68,9 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
         zone=episode.zone,
         profile=profile(ctx.episode),
         support=support_figure(ctx.episode, ctx.settings, ctx.support, as_of),
+        responses=ctx.responses,
         gases=ctx.gases,
+        scores=ctx.scores,
         policy_hash=policy.hash,
     )
 

@@ -4,12 +4,14 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from core.record.channels import MODES
+from core.record.channels import MODES, Group, by_group
 from core.record.episode import Episode
-from core.record.instant import DAY, HOUR, Instant
+from core.record.instant import DAY, HOUR, MINUTE, Instant
 from core.record.settings import SettingsInForce
 
 SUPPORT_MODES = frozenset(MODES) - {"off"}
+SETTLED = 10 * MINUTE
+"""Entries closer together than this say nothing about their order: they were written in one go."""
 _ENDING_EVENTS = ("stopped", "intubated", "arrest")
 
 
@@ -81,7 +83,7 @@ def support_time(episode: Episode, settings: SettingsInForce) -> SupportTime:
     stated = episode.latest("started_at")
     start = int(stated) if stated is not None else first
     end, ended_by = _end(episode, settings)
-    return SupportTime(start, stated is not None or _began_after_first_entry(episode, first), end, ended_by,
+    return SupportTime(start, stated is not None or _seen_to_begin(episode, first), end, ended_by,
                        _breaks(episode, end))  # fmt: skip
 
 
@@ -94,10 +96,25 @@ def _first_support(episode: Episode, settings: SettingsInForce) -> Instant | Non
     return int(on.t[0]) if len(on) else None
 
 
-def _began_after_first_entry(episode: Episode, first: Instant | None) -> bool:
-    """Support seen to begin: something was logged before it, so its first setting is its start."""
-    logged = episode.first_at
-    return first is not None and logged is not None and logged < first
+def _seen_to_begin(episode: Episode, first: Instant | None) -> bool:
+    """Whether logging saw support begin, so that its first setting is its start.
+
+    It did where a gas was logged before it, anything a person wrote stands at least `SETTLED` before it, or the
+    mask went on around it. Readings of the ventilator itself before its first setting say that it ran already.
+    """
+    if first is None:
+        return False
+    machine = [episode.number(c.key) for c in by_group(Group.DEVICE)]
+    if any(len(s) and int(s.t[0]) < first for s in machine):
+        return False
+    mask_on = episode.text("mask_on").t
+    if any(first - 3 * SETTLED <= int(t) <= first + SETTLED for t in mask_on):
+        return True
+    if any(gas.at < first for gas in episode.gases):
+        return True
+    written = [int(s.spots.t[0]) for c in by_group(Group.VITAL) if len((s := episode.number(c.key)).spots)]
+    written += [int(w.t[0]) for c in by_group(Group.EVENT) if len(w := episode.text(c.key))]
+    return any(t <= first - SETTLED for t in written)
 
 
 def _end(episode: Episode, settings: SettingsInForce) -> tuple[Instant | None, str | None]:

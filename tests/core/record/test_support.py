@@ -5,7 +5,7 @@ import pytest
 from core.record.instant import HOUR
 from core.record.settings import SettingsInForce
 from core.record.support import support_time
-from tests.support.log import episode, moment
+from tests.support.log import device, episode, moment
 
 
 def found(log):
@@ -24,6 +24,24 @@ def test_the_start_is_the_first_support_logged_after_something_else():
 def test_support_that_ran_before_logging_has_no_recorded_start():
     s = found("01:00 mode bpap-st ipap 14 epap 5\n01:10 rr 22")
     assert not s.start_recorded
+
+
+@pytest.mark.parametrize(
+    ("before", "seen"),
+    [
+        ("00:55 rr 30", False),
+        ("00:50 rr 30", True),
+        ("00:59 ph 7.25 paco2 70", True),
+        ("00:40 mask on", True),
+    ],
+)
+def test_the_start_was_seen_when_what_came_before_it_says_so(before, seen):
+    assert found(before + "\n01:00 mode bpap-st ipap 14 epap 5").start_recorded is seen
+
+
+def test_a_ventilator_that_wrote_before_its_first_setting_ran_already():
+    e = episode("00:30 rr 30\n01:00 mode bpap-st ipap 14 epap 5", samples=[device("leak", "00:59", [20, 20])])
+    assert not support_time(e, SettingsInForce(e)).start_recorded
 
 
 def test_a_stated_start_is_believed():
