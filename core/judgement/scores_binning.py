@@ -2,7 +2,7 @@
 
 pH 7.345 belongs to 7.35 and P/F 200.5 to 201. A binary float cannot say 7.345, so the text as typed decides;
 without a text, the shortest decimal that names the float does, after a division's dust is swept at 9 decimals
-(80.2 / 0.4 is 200.49999999999997 as a float and 200.5 to anybody who typed it).
+(31.5 / 0.28 is 112.49999999999999 as a float and 112.5 to anybody who typed it).
 """
 
 from __future__ import annotations
@@ -24,8 +24,8 @@ def half_up(value: Input, decimals: int, text: str | None = None) -> float | Non
     The text must be in the same unit as the value: a text that names another number (more than a millionth
     away) is not this value's and is passed over.
 
-    >>> half_up(7.345, 2), half_up(200.5, 0), half_up(80.2 / 0.4, 0), half_up(7.345, 2, "7.345")
-    (7.35, 201.0, 201.0, 7.35)
+    >>> half_up(7.345, 2), half_up(200.5, 0), half_up(31.5 / 0.28, 0), half_up(7.345, 2, "7.345")
+    (7.35, 201.0, 113.0, 7.35)
     >>> half_up(float("nan"), 2) is None
     True
     """
@@ -52,8 +52,8 @@ def ratio_text(numerator: str, denominator: str) -> str | None:
 
     For a P/F made of a typed PaO2 and a typed FiO2 (as a fraction), so that binning sees what was typed.
 
-    >>> ratio_text("80.2", "0.4"), ratio_text("60", "0") is None
-    ('200.5', True)
+    >>> ratio_text("31.5", "0.28"), ratio_text("60", "0") is None
+    ('112.5', True)
     """
     try:
         quotient = Fraction(numerator.replace(",", ".")) / Fraction(denominator.replace(",", "."))
