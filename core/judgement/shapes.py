@@ -196,6 +196,17 @@ class LeakFigure:
     limit_L_per_min: float | None = None
     definition: str | None = None
     reasons: Reasons = field(default_factory=dict)
+    latest_L_per_min: float | None = None
+    """The newest 15-min median, or the newest logged value where it is newer."""
+    latest_at: Instant | None = None
+    over_since: Instant | None = None
+    """Over the limit, sustained, since then and still."""
+    adjusted_at: Instant | None = None
+    """The newest mask adjustment or change, with the medians of the quarters of an hour before and after it."""
+    before_adjustment_L_per_min: float | None = None
+    after_adjustment_L_per_min: float | None = None
+    probable_breaks: tuple[tuple[Instant, Instant | None], ...] = ()
+    """Unlogged breaks that the device's values suggest: start, and end or None while it goes on."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,0 +1,220 @@
+"""Trends: the value now and its robust slope per hour with interval, over the policy's span before `as_of`.
+
+P/F, S/F and ROX need a known FiO2. Device channels are reduced to 15-min medians. With four points or fewer there
+is a slope and a band, and nothing is called significant.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from math import isnan
+
+import numpy as np
+
+from core.judgement.context import Context
+from core.judgement.device_medians import Medians, medians
+from core.judgement.probable_breaks import in_any, probable_breaks
+from core.judgement.shapes import RatioFigure
+from core.judgement.theil_sen import theil_sen
+from core.physiology.ventilation import base_weight, predicted_body_weight
+from core.record.episode import Series
+from core.record.instant import HOUR, MINUTE, Instant
+from core.record.message import Message
+from core.record.samples import Flags, Times, Values
+
+ROX_CAVEAT = Message("trend.rox_validated_in_high_flow")
+"""ROX was validated in high-flow nasal oxygen, not on a mask (Roca, AJRCCM 2019;199:1368)."""
+
+
+@dataclass(frozen=True, slots=True)
+class Points:
+    """Values over time, in order, shapes (n,)."""
+
+    t: Times
+    v: Values
+
+    def within(self, start: Instant, end: Instant) -> Points:
+        """The points from `start` to `end`, both included."""
+        i, j = np.searchsorted(self.t, [start, end + 1])
+        return Points(self.t[i:j], self.v[i:j])
+
+
+NO_POINTS = Points(np.empty(0, np.int64), np.empty(0))
+
+
+def span_start(ctx: Context) -> Instant:
+    """The first instant of the trend's span."""
+    return ctx.as_of - int(ctx.policy.trend.span_h.value * HOUR)
+
+
+def slope_figure(
+    ctx: Context, points: Points, reasons: dict[str, Message], caveat: Message | None = None
+) -> RatioFigure:
+    """The figure of points: newest value (None where `reasons` has `latest`), slope per hour, interval, count."""
+    start = span_start(ctx)
+    near = points.within(start, ctx.as_of)
+    n = int(near.t.size)
+    line = theil_sen((near.t - ctx.as_of) / HOUR, near.v, ctx.policy.trend.confidence.value)
+    if isnan(line.slope):
+        reasons["slope_per_h"] = Message("trend.too_few_points", {"points": n, "needed": 2})
+    elif isnan(line.low):
+        reasons["slope_low"] = Message("trend.too_few_for_interval", {"points": n, "needed": 3})
+    elif n <= ctx.policy.trend.few_points.value:
+        reasons["slope_low"] = Message("trend.few_points", {"points": n})
+    empty = not points.t.size
+    if empty:
+        reasons.setdefault("latest", Message("trend.no_values"))
+    hidden = "latest" in reasons
+    return RatioFigure(
+        None if hidden else float(points.v[-1]), None if empty else int(points.t[-1]), _known(line.slope),
+        _known(line.low), _known(line.high), n, start, caveat, reasons,
+    )  # fmt: skip
+
+
+def _known(value: float) -> float | None:
+    return None if isnan(value) else value
+
+
+def ratio_trends(ctx: Context) -> dict[str, RatioFigure]:
+    """P/F (from arterial gases), S/F and ROX (from SpO2) as `pf`, `sf` and `rox`; nulls carry their reason."""
+    spo2 = saturation_points(ctx)
+    return {"pf": _pf(ctx), "sf": _sf(ctx, spo2), "rox": _rox(ctx, spo2)}
+
+
+def _pf(ctx: Context) -> RatioFigure:
+    gases = [g for g in ctx.gases if g.site == "arterial" and not g.off_support]
+    known = [(g.at, g.pf_mmHg) for g in gases if g.pf_mmHg is not None]
+    points = Points(np.array([t for t, _ in known], np.int64), np.array([v for _, v in known], np.float64))
+    reasons: dict[str, Message] = {}
+    if gases and gases[-1].pf_mmHg is None:
+        unknown = Message("trend.fio2_not_known", {"at": gases[-1].at})
+        reasons["latest"] = unknown if gases[-1].fio2 is None else gases[-1].reasons.get("pf_mmHg", unknown)
+    return slope_figure(ctx, points, reasons)
+
+
+@dataclass(frozen=True, slots=True)
+class Saturations:
+    """SpO2 on support with the FiO2 of that moment, NaN where not known; device values as 15-min medians."""
+
+    t: Times
+    spo2: Values
+    fio2: Values
+
+
+def saturation_points(ctx: Context) -> Saturations:
+    """The SpO2 points of an episode. A quarter of an hour in which FiO2 changed has no FiO2."""
+    series = _finite(ctx.episode.number("spo2"))
+    spot, bins = series.spots, _bins(ctx, series.machine)
+    fio2 = ctx.settings.fio2
+    from_bins: Values = fio2.on(bins.first)
+    same: Flags = from_bins == fio2.on(bins.last)
+    t = np.concatenate((spot.t, bins.last))
+    order = np.argsort(t, kind="stable")
+    values = np.concatenate((spot.v, bins.v))[order]
+    fractions = np.concatenate((fio2.on(spot.t), np.where(same, from_bins, np.nan)))[order]
+    keep = ~in_any(t[order], ctx.support.breaks)
+    return Saturations(t[order][keep], values[keep], fractions[keep])
+
+
+def _finite(series: Series) -> Series:
+    return series.cut(np.isfinite(series.v)) if len(series) else series
+
+
+def _bins(ctx: Context, series: Series) -> Medians:
+    return medians(series.t, series.v, int(ctx.policy.trend.device_median_min.value * MINUTE))
+
+
+def _sf(ctx: Context, points: Saturations) -> RatioFigure:
+    ceiling = ctx.policy.oxygen.no_sf_above_spo2.value
+    usable = (points.spo2 <= ceiling) & np.isfinite(points.fio2)
+    reasons = _oxygen_reasons(points)
+    if points.t.size and points.spo2[-1] > ceiling:
+        values = {"at": int(points.t[-1]), "spo2": float(points.spo2[-1]), "limit": ceiling}
+        reasons["latest"] = Message("trend.spo2_above_ceiling", values)
+    return slope_figure(ctx, Points(points.t[usable], points.spo2[usable] / points.fio2[usable]), reasons)
+
+
+def _oxygen_reasons(points: Saturations) -> dict[str, Message]:
+    if points.t.size and isnan(points.fio2[-1]):
+        return {"latest": Message("trend.fio2_not_known", {"at": int(points.t[-1])})}
+    return {}
+
+
+def _rox(ctx: Context, points: Saturations) -> RatioFigure:
+    rates = rates_at(ctx, points.t)
+    reasons = _oxygen_reasons(points)
+    if points.t.size and isnan(rates[-1]):
+        reasons.setdefault("latest", Message("trend.rate_not_known", {"at": int(points.t[-1])}))
+    usable = np.isfinite(points.fio2) & (rates > 0)
+    ratio = points.spo2[usable] / points.fio2[usable] / rates[usable]
+    return slope_figure(ctx, Points(points.t[usable], ratio), reasons, ROX_CAVEAT)
+
+
+def rates_at(ctx: Context, times: Times) -> Values:
+    """The respiratory rate at each time, shape (n,): counted within 30 min, else the device's median, else NaN."""
+    counted = _finite(ctx.episode.number("rr").spots)
+    out = np.full(times.shape, np.nan)
+    if len(counted) and times.size:
+        out = _nearest_within(counted, times, int(ctx.policy.freshness.vitals_min.value * MINUTE))
+    machine = _machine_rate(ctx)
+    if len(machine) and times.size:
+        bins = _bins(ctx, machine)
+        span = int(ctx.policy.trend.device_median_min.value * MINUTE)
+        i = np.minimum(np.searchsorted(bins.bin, times // span), bins.bin.size - 1)
+        out = np.where(np.isnan(out) & (bins.bin[i] == times // span), bins.v[i], out)
+    return out
+
+
+def _machine_rate(ctx: Context) -> Series:
+    rr = ctx.episode.number("rr").machine
+    return _finite(rr if len(rr) else ctx.episode.number("rr_total"))
+
+
+def _nearest_within(series: Series, times: Times, reach: Instant) -> Values:
+    right = np.clip(np.searchsorted(series.t, times), 0, len(series) - 1)
+    left = np.maximum(right - 1, 0)
+    nearer = np.where(np.abs(series.t[left] - times) <= np.abs(series.t[right] - times), left, right)
+    return np.where(np.abs(series.t[nearer] - times) <= reach, series.v[nearer], np.nan)
+
+
+def channel_trend(ctx: Context, channel: str) -> RatioFigure:
+    """The trend of a channel, or of `vte_per_kg` (mL per kg of predicted weight).
+
+    A counted respiratory rate beats the device's where it was counted at least twice in the span. Tidal
+    volumes of probable breaks are void.
+    """
+    if channel == "vte_per_kg":
+        return _vte_per_kg(ctx)
+    series = _finite(ctx.episode.number(channel))
+    start = span_start(ctx)
+    spots = Points(series.spots.t, series.spots.v)
+    if channel == "rr":
+        machine = _machine_rate(ctx)
+        if spots.within(start, ctx.as_of).t.size >= 2 or not len(machine):
+            return slope_figure(ctx, spots, {})
+        return slope_figure(ctx, _device_points(ctx, machine), {})
+    return slope_figure(ctx, _together(spots, _device_points(ctx, series.machine)), {})
+
+
+def _device_points(ctx: Context, series: Series) -> Points:
+    bins = _bins(ctx, series.between(span_start(ctx), ctx.as_of))
+    return Points(bins.t, bins.v)
+
+
+def _together(a: Points, b: Points) -> Points:
+    t, v = np.concatenate((a.t, b.t)), np.concatenate((a.v, b.v))
+    order = np.argsort(t, kind="stable")
+    return Points(t[order], v[order])
+
+
+def _vte_per_kg(ctx: Context) -> RatioFigure:
+    height, sex = ctx.episode.latest("height"), ctx.episode.latest_text("sex")
+    pbw = float(predicted_body_weight(height if height is not None else np.nan, base_weight(sex)))
+    if isnan(pbw):
+        reason = Message("trend.predicted_weight_not_known", {"height": height, "sex": sex})
+        return slope_figure(ctx, NO_POINTS, {"latest": reason})
+    series = _finite(ctx.episode.number("vte")).between(span_start(ctx), ctx.as_of)
+    series = series.cut(~in_any(series.t, (*ctx.support.breaks, *probable_breaks(ctx))))
+    points = _together(Points(series.spots.t, series.spots.v), _device_points(ctx, series.machine))
+    caveat = Message("caveat.tidal_volume_modelled_on_mask")
+    return slope_figure(ctx, Points(points.t, points.v / pbw), {}, caveat)
