@@ -40,6 +40,9 @@ QPushButton[role="primary"]:focus {{ border: 2px solid {ink}; }}
 QPushButton[role="primary"]:disabled {{ background: {sunken}; color: {ink_quiet}; border-color: {line}; }}
 QPushButton[role="plain"], QToolButton[role="plain"] {{ border-color: transparent; background: transparent; }}
 QPushButton[role="plain"]:hover, QToolButton[role="plain"]:hover {{ background: {wash}; }}
+QPushButton[role="plain"]:checked, QToolButton[role="plain"]:checked {{
+    background: {wash}; border-color: {accent}; font-weight: 600;
+}}
 QPushButton[role="plain"]:focus, QToolButton[role="plain"]:focus {{ border: 2px solid {accent}; }}
 
 QLineEdit, QPlainTextEdit, QTextEdit, QSpinBox, QDoubleSpinBox, QComboBox, QDateTimeEdit {{

@@ -1,0 +1,65 @@
+"""The range of a panel's axes: a usual range for each channel, widened so that no value is cut off."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from math import ceil, floor
+from typing import Final
+
+import numpy as np
+
+from app.chart.shapes import Scale, Trace
+from app.episode.traces import shown_as
+from app.panels import Panel
+
+USUAL: Final = {
+    "ph": (7.15, 7.45), "paco2": (30, 80), "pao2": (40, 100), "pf": (0, 400), "hco3": (15, 40),
+    "hco3_calculated": (15, 40), "sbe": (-10, 15), "be": (-10, 15), "lactate": (0, 4),
+    "rr": (0, 40), "rr_total": (0, 40), "hr": (40, 140), "spo2": (80, 100), "sbp": (60, 180), "dbp": (40, 120),
+    "gcs": (3, 15), "temp": (35, 40), "dyspnoea": (0, 10),
+    "ipap": (0, 30), "epap": (0, 30), "cpap": (0, 30), "pressure_support": (0, 30), "fio2": (0.2, 1.0),
+    "o2_flow": (0, 15), "rate_set": (0, 30), "ti": (0, 2),
+    "vte": (0, 800), "mv": (0, 20), "leak": (0, 60), "pip": (0, 30), "spont_percent": (0, 100),
+}  # fmt: skip
+"""Ranges at rest, in canonical units, so that two episodes look alike at first. Common practice, no source."""
+_STEPS: Final = (0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200, 500)
+
+
+def scales_of(panel: Panel, traces: Sequence[Trace], gas_unit: str) -> tuple[Scale, ...]:
+    """One scale for each unit, in the order of the channels; a fixed range holds for the first unit."""
+    by_unit: dict[str, list[str]] = {}
+    for channel in panel.channels:
+        by_unit.setdefault(shown_as(channel, gas_unit).unit, []).append(channel)
+    made = []
+    for n, (unit, channels) in enumerate(by_unit.items()):
+        factors = [shown_as(c, gas_unit) for c in channels]
+        low = min(USUAL.get(c, (0, 1))[0] * f.factor for c, f in zip(channels, factors, strict=True))
+        high = max(USUAL.get(c, (0, 1))[1] * f.factor for c, f in zip(channels, factors, strict=True))
+        low, high = widened(low, high, [t for t in traces if t.unit == unit])
+        if n == 0:
+            low, high = _fixed(panel, factors[0].factor, low, high)
+        made.append(Scale(unit, low, high, max(f.decimals for f in factors)))
+    return tuple(made)
+
+
+def _fixed(panel: Panel, factor: float, low: float, high: float) -> tuple[float, float]:
+    new_low = low if panel.low is None else panel.low * factor
+    new_high = high if panel.high is None else panel.high * factor
+    return (new_low, new_high) if new_low < new_high else (low, high)
+
+
+def widened(low: float, high: float, traces: Sequence[Trace]) -> tuple[float, float]:
+    """The range, with every finite value inside and round ends where it was widened."""
+    values = [t.v[np.isfinite(t.v)] for t in traces]
+    found = np.concatenate(values) if values else np.empty(0)
+    if found.size == 0:
+        return low, high
+    least, most = float(found.min()), float(found.max())
+    step = next((s for s in _STEPS if s >= (max(high, most) - min(low, least)) / 10), 1000)
+    if least <= low and low > 0:
+        low = max(floor((least - step * 0.25) / step) * step, 0.0)
+    elif least < low:
+        low = floor(least / step) * step
+    if most >= high:
+        high = ceil((most + step * 0.25) / step) * step
+    return round(low, 4), round(high, 4)

@@ -1,0 +1,292 @@
+"""One episode as a lane: what is drawn along the clock, and its words. Draws what the figures say."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from PySide6.QtCore import QCoreApplication
+
+from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
+from app.course import Course, Stretch
+from app.finding_names import due_name, marker_name
+from app.formats import clock, fraction, minutes, quantity, trimmed
+from app.phrases import (
+    change_sentence,
+    change_word,
+    channel_name,
+    gas_name,
+    gas_words,
+    known,
+    settings_line,
+    settings_word,
+    state_of,
+    support_now,
+    verdict_or_none,
+)
+from app.theme import Tier, Verdict, state_word, tier_word, verdict_of, verdict_word
+from app.ward.ordering import is_ended, next_due
+from app.words import Reader, sentence
+from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, JudgedGas, ResponseFigure
+from core.record.instant import MINUTE, Instant
+
+translate = QCoreApplication.translate
+OPEN_FLAGS = ("raised", "seen")
+_TIERS = ("escalate", "concern", "remark")
+
+
+@dataclass(frozen=True, slots=True)
+class OnWard:
+    """What the ward view knows of an episode."""
+
+    figures: EpisodeFigures
+    course: Course
+
+
+@dataclass(frozen=True, slots=True)
+class LaneWords:
+    """Makes lanes in one zone, one pressure unit, at one moment."""
+
+    reader: Reader
+    as_of: Instant
+
+    @property
+    def zone(self) -> str:
+        """The zone of wall-clock times."""
+        return self.reader.zone
+
+    @property
+    def gas_unit(self) -> str:
+        """The unit of gas pressures."""
+        return self.reader.gas_unit
+
+    def lane(self, on_ward: OnWard, *, first: bool, ambiguous: bool = False) -> Lane:
+        """The lane of an episode. `ambiguous`: another episode carries the same label, so tell them apart."""
+        f, course = on_ward.figures, on_ward.course
+        ended = is_ended(f)
+        latest = _latest_verdict(f)
+        gas = _latest_gas(f)
+        strongest = strongest_flag(f)
+        due = None if ended else next_due(f)
+        return Lane(
+            key=f.episode,
+            title=f.label,
+            subtitle=self._subtitle(f, ambiguous),
+            support=tuple(self._pieces(course)),
+            items=tuple(sorted(self._items(f, course), key=lambda i: i.at)),
+            state=state_of(gas.state) if gas is not None else None,
+            state_word=state_word(state_of(gas.state)) if gas is not None else translate("ward", "no gas yet"),
+            verdict=latest,
+            verdict_word=verdict_word(latest) if latest is not None else "",
+            tier=Tier(strongest.tier) if strongest is not None else None,
+            flag_word="; ".join(flag_words(f)),
+            due_word=self._due_word(due) if not ended else self._end_word(f),
+            due_late=due is not None and due.state == "overdue",
+            first_word=translate("ward", "See first") if first else "",
+            closed=ended,
+            sentence=self.lane_sentence(f),
+            payload=f.episode,
+        )
+
+    # words of the whole lane
+
+    def _subtitle(self, f: EpisodeFigures, ambiguous: bool) -> str:
+        s = f.support
+        told = self._indication(f)
+        if ambiguous and s.since is not None:
+            told = translate("ward", "{indication}, from {time}").format(indication=told, time=clock(s.since, self.zone))
+        return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
+
+    def _indication(self, f: EpisodeFigures) -> str:
+        indication = f.profile.get("indication")
+        return indication_word(str(indication)) if indication else translate("ward", "indication not recorded")
+
+    def _due_word(self, due: DueFigure | None) -> str:
+        if due is None:
+            return translate("ward", "nothing due")
+        name = due_name(due.what)
+        if due.state == "awaiting result":
+            return translate("ward", "{what}: awaiting result").format(what=name)
+        if due.state == "overdue":
+            late = minutes((self.as_of - due.due_until) / MINUTE)
+            return translate("ward", "{what} overdue {late}").format(what=name, late=late)
+        return translate("ward", "{what} by {time}").format(what=name, time=clock(due.due_until, self.zone))
+
+    def _end_word(self, f: EpisodeFigures) -> str:
+        assert f.support.ended_at is not None
+        at = clock(f.support.ended_at, self.zone)
+        reason = f.support.end_reason
+        if reason:
+            return translate("ward", "ended {time}, {reason}").format(time=at, reason=reason)
+        return translate("ward", "ended {time}").format(time=at)
+
+    def lane_sentence(self, f: EpisodeFigures) -> str:
+        """The whole episode in words, for the status line and for screen readers."""
+        s = f.support
+        setting = support_now(s.mode, s.ipap_cmH2O, s.epap_cmH2O, s.fio2, s.o2_flow_L_per_min)
+        parts = [f.label, self._indication(f), "" if is_ended(f) else setting]
+        gas = _latest_gas(f)
+        if gas is not None:
+            parts.append(f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_word(state_of(gas.state))})")
+        latest = _latest_verdict(f)
+        if latest is not None:
+            parts.append(verdict_word(latest))
+        parts += flag_words(f)
+        parts.append(self._end_word(f) if is_ended(f) else self._due_word(next_due(f)))
+        return ". ".join(p for p in parts if p)
+
+    # along the clock
+
+    def _pieces(self, course: Course) -> Iterator[SupportPiece]:
+        start = course.support.start
+        for s in course.stretches:
+            begin = s.start if start is None else max(s.start, start)
+            if s.settings.is_off or s.end <= begin or not settings_word(s.settings):
+                continue
+            pressure = s.settings.pressure_support if s.settings.is_bilevel else None
+            if pressure is not None and pressure != pressure:
+                pressure = None
+            for a, b in _outside(begin, s.end, course):
+                yield SupportPiece(a, b, pressure, settings_word(s.settings))
+
+    def _items(self, f: EpisodeFigures, course: Course) -> Iterator[LaneItem]:
+        judged = dict(_judged(f))
+        for gas in f.gases:
+            yield self._gas_item(gas, judged.get(gas.at))
+        for n, s in enumerate(course.stretches):
+            yield LaneItem(LaneKind.SETTING, s.start, self._change_sentence(n, course),
+                           word=_tick_word(s), doubtful=s.doubtful)  # fmt: skip
+        for b in course.breaks:
+            end = b.end if b.end is not None else self.as_of
+            yield LaneItem(LaneKind.BREAK, b.start, self._break_sentence(b.start, b.end), end=end,
+                           word=translate("ward", "off"))  # fmt: skip
+        if not is_ended(f):
+            yield from self._window_items(f)
+        for flag in f.flags:
+            if flag.strongest and flag.state != "no longer met":
+                yield self._flag_item(flag)
+
+    def _gas_item(self, gas: GasFigure, found: tuple[ResponseFigure, JudgedGas] | None) -> LaneItem:
+        verdict = verdict_or_none(found[1].verdict) if found is not None else None
+        parts = [f"{clock(gas.at, self.zone)} {gas_name(gas)}: {gas_words(gas, self.gas_unit)}", state_word(state_of(gas.state))]
+        if found is not None and verdict is not None:
+            parts.append(self._verdict_sentence(verdict, found[0], found[1]))
+        if gas.doubt:
+            parts.append(translate("ward", "doubtful: outside usual limits and not confirmed"))
+        if gas.corrected:
+            parts.append(translate("ward", "corrected"))
+        return LaneItem(LaneKind.GAS, gas.at, ". ".join(parts), word=f"pH {gas.ph_text or gas.ph or ''}",
+                        verdict=verdict, state=state_of(gas.state), doubtful=gas.doubt or gas.disputed, payload=gas)  # fmt: skip
+
+    def _verdict_sentence(self, verdict: Verdict, response: ResponseFigure, judged: JudgedGas) -> str:
+        text = translate("ward", "{verdict}, {minutes} after {anchor} at {time}")
+        return text.format(verdict=verdict_word(verdict), minutes=minutes(judged.minutes),
+                           anchor=anchor_name(response), time=clock(response.anchor_at, self.zone))  # fmt: skip
+
+    def _change_sentence(self, n: int, course: Course) -> str:
+        s = course.stretches[n]
+        at = clock(s.start, self.zone)
+        if n == 0:
+            return f"{at} {settings_line(s.settings)}"
+        return f"{at} {change_sentence(s.changed, s.settings)}"
+
+    def _break_sentence(self, start: Instant, end: Instant | None) -> str:
+        at = clock(start, self.zone)
+        if end is None:
+            length = minutes((self.as_of - start) / MINUTE)
+            return translate("ward", "Off the mask since {time}, {length}").format(time=at, length=length)
+        length = minutes((end - start) / MINUTE)
+        return translate("ward", "Off the mask {time} to {end}, {length}").format(
+            time=at, end=clock(end, self.zone), length=length)  # fmt: skip
+
+    def _window_items(self, f: EpisodeFigures) -> Iterator[LaneItem]:
+        for r in f.responses:
+            if r.headline == "not yet known" and r.superseded_at is None and r.window_to > self.as_of:
+                text = translate("ward", "Response window {start} to {end} after {anchor}: no gas yet").format(
+                    start=clock(r.window_from, self.zone), end=clock(r.window_to, self.zone), anchor=anchor_name(r))  # fmt: skip
+                yield LaneItem(LaneKind.WINDOW, r.window_from, text, end=r.window_to,
+                               word=translate("ward", "gas due"), payload=r)  # fmt: skip
+
+    def _flag_item(self, flag: FlagFigure) -> LaneItem:
+        evidence = "; ".join(sentence(e, self.reader) for e in flag.evidence)
+        text = f"{clock(flag.since, self.zone)} {tier_word(Tier(flag.tier))}: {marker_name(flag.marker)}. {evidence}"
+        return LaneItem(LaneKind.FLAG, flag.since, text, word=marker_name(flag.marker), tier=Tier(flag.tier),
+                        settled=flag.state != "raised", payload=flag)  # fmt: skip
+
+
+def _tick_word(stretch: Stretch) -> str:
+    """Only what the bar above does not say already: the oxygen, or another setting."""
+    if stretch.changed.keys() & {"fio2", "o2_flow"}:
+        s = stretch.settings
+        return fraction(s.fio2) if known(s.fio2) else f"{trimmed(s.o2_flow)} L/min" if known(s.o2_flow) else ""
+    return "" if stretch.changed.keys() & {"ipap", "epap", "cpap", "mode"} else change_word(stretch)
+
+
+def anchor_name(response: ResponseFigure) -> str:
+    """What the anchor was: the start, or the change with its first and last values."""
+    if response.anchor == "start":
+        return translate("ward", "the start of support")
+    if response.anchor == "break_end":
+        return translate("ward", "the end of a break")
+    parts = [_step_words(s.channel, s.after) for s in response.steps[-2:]]
+    return ", ".join(parts) or translate("ward", "a change of settings")
+
+
+def _step_words(channel: str, after: float | str | None) -> str:
+    return f"{channel_name(channel)} {quantity(channel, after)}"
+
+
+def indication_word(indication: str) -> str:
+    """The indication in the reader's language; abbreviations in capitals."""
+    capitals = {"copd": "COPD", "ards": "ARDS"}
+    text = capitals.get(indication) or translate("indication", indication)
+    return text[:1].upper() + text[1:]
+
+
+def strongest_flag(f: EpisodeFigures) -> FlagFigure | None:
+    """The strongest open flag."""
+    flags = open_flags(f)
+    return flags[0] if flags else None
+
+
+def open_flags(f: EpisodeFigures) -> list[FlagFigure]:
+    """The strongest open flag of each group, strongest first."""
+    found = [g for g in f.flags if g.strongest and g.state in OPEN_FLAGS]
+    return sorted(found, key=lambda g: (_TIERS.index(g.tier), g.since))
+
+
+def flag_words(f: EpisodeFigures) -> list[str]:
+    """The strongest open flag of each group in short words."""
+    return [marker_name(g.marker) for g in open_flags(f)]
+
+
+def _latest_gas(f: EpisodeFigures) -> GasFigure | None:
+    usable = [g for g in f.gases if g.site != "venous"]
+    return usable[-1] if usable else None
+
+
+def _latest_verdict(f: EpisodeFigures) -> Verdict | None:
+    told = [r for r in f.responses if r.headline_gas_at is not None]
+    if told:
+        return verdict_of(max(told, key=lambda r: (r.headline_gas_at or 0, r.anchor_at)).headline)
+    return verdict_of(f.responses[-1].headline) if f.responses else None
+
+
+def _judged(f: EpisodeFigures) -> Iterator[tuple[Instant, tuple[ResponseFigure, JudgedGas]]]:
+    """Each gas with the latest anchor it is attributed to; later anchors overwrite earlier ones."""
+    for r in f.responses:
+        for g in r.gases:
+            if g.attributable and g.verdict is not None:
+                yield g.at, (r, g)
+
+
+def _outside(start: Instant, end: Instant, course: Course) -> Iterator[tuple[Instant, Instant]]:
+    at = start
+    for b in course.breaks:
+        stop = b.end if b.end is not None else course.until
+        if b.start < end and stop > at:
+            if b.start > at:
+                yield at, b.start
+            at = max(at, stop)
+    if at < end:
+        yield at, end

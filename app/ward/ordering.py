@@ -1,0 +1,96 @@
+"""Which lanes stand on the ward view, and in what order. Ranks come with the figures; nothing is judged here."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from enum import StrEnum
+
+from core.judgement.shapes import DueFigure, EpisodeFigures
+from core.record.instant import Instant
+
+OPEN_DUE = ("overdue", "soon", "open", "awaiting result")
+_URGENT = ("overdue", "soon")
+_OPEN_FLAG = ("raised", "seen")
+
+
+class Order(StrEnum):
+    """How lanes are sorted."""
+
+    CONCERN = "concern"
+    BED = "bed"
+    DUE = "due"
+
+
+class Shown(StrEnum):
+    """Which lanes are shown."""
+
+    ALL = "all"
+    NOT_RESPONDING = "not responding"
+    DUE = "due soon"
+
+
+def is_ended(figures: EpisodeFigures) -> bool:
+    """Whether support has ended."""
+    return figures.support.ended_at is not None
+
+
+def next_due(figures: EpisodeFigures) -> DueFigure | None:
+    """The open due item that ends first."""
+    items = [d for d in figures.due if d.state in OPEN_DUE]
+    return min(items, key=lambda d: d.due_until, default=None)
+
+
+def natural(text: str) -> tuple[tuple[int, int | str], ...]:
+    """A key that puts Bed 9 before Bed 10.
+
+    >>> sorted(["Bed 10", "Bed 9"], key=natural)
+    ['Bed 9', 'Bed 10']
+    """
+    parts = re.split(r"(\d+)", text.casefold())
+    return tuple((0, int(p)) if p.isdigit() else (1, p) for p in parts if p)
+
+
+def ordered(ward: Sequence[EpisodeFigures], order: Order) -> tuple[EpisodeFigures, ...]:
+    """The episodes in the wanted order; ended ones last in any."""
+
+    def key(f: EpisodeFigures) -> tuple[object, ...]:
+        bed = natural(f.label)
+        if order is Order.BED:
+            return (is_ended(f), bed)
+        if order is Order.DUE:
+            due = next_due(f)
+            until: Instant | float = due.due_until if due is not None else float("inf")
+            return (is_ended(f), until, f.concern.rank, f.concern.order, bed)
+        return (f.concern.rank, f.concern.order, bed)
+
+    return tuple(sorted(ward, key=key))
+
+
+def shown(ward: Sequence[EpisodeFigures], which: Shown, text: str = "") -> tuple[EpisodeFigures, ...]:
+    """The episodes that pass the filter and hold `text` in label, location or indication."""
+    words = text.casefold().split()
+    return tuple(f for f in ward if _passes(f, which) and _holds(f, words))
+
+
+def _passes(f: EpisodeFigures, which: Shown) -> bool:
+    if which is Shown.NOT_RESPONDING:
+        strong = any(g.state in _OPEN_FLAG and g.tier in ("escalate", "concern") for g in f.flags)
+        latest = next((r for r in reversed(f.responses) if r.headline_gas_at is not None), None)
+        poor = latest is not None and latest.headline in ("worse", "mixed", "no clear change") \
+            and latest.state != "resolved"
+        return not is_ended(f) and (strong or poor)
+    if which is Shown.DUE:
+        return any(d.state in _URGENT for d in f.due)
+    return True
+
+
+def _holds(f: EpisodeFigures, words: Sequence[str]) -> bool:
+    text = " ".join(str(x) for x in (f.label, f.episode, f.profile.get("location"), f.profile.get("indication")) if x)
+    return all(w in text.casefold() for w in words)
+
+
+def first_to_see(ward: Sequence[EpisodeFigures]) -> EpisodeFigures | None:
+    """Whom to see first: the top of the order by concern, if there is a concern at all."""
+    top = next(iter(ordered(ward, Order.CONCERN)), None)
+    return top if top is not None and top.concern.rank <= 4 else None

@@ -1,0 +1,222 @@
+"""The ward view: every episode along the shift's clock, whom to see first on top."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from zoneinfo import ZoneInfo
+
+from PySide6.QtCore import Signal
+from PySide6.QtGui import QFontMetrics
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QSizePolicy, QVBoxLayout, QWidget
+
+from app.chart.lanes import WardLanes
+from app.chart.shapes import LaneItem, LanesSpec
+from app.choice_row import ChoiceRow
+from app.shift import Shift
+from app.theme import Theme, Tier
+from app.ward.lane_words import LaneWords, OnWard, strongest_flag
+from app.ward.legend import Legend
+from app.ward.ordering import Order, Shown, first_to_see, ordered, shown
+from app.ward.see_first import SeeFirst
+from app.words import Reader, sentence
+from core.record.instant import Instant
+
+
+@dataclass(frozen=True, slots=True)
+class WardContent:
+    """What the ward view shows: its episodes, as of a moment, in a shift."""
+
+    episodes: tuple[OnWard, ...]
+    as_of: Instant
+    shift: Shift
+    zone: str
+    gas_unit: str = "mmHg"
+
+
+class _Line(QLabel):
+    """One line that is cut with an ellipsis where it does not fit, and whole in its tool tip."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._whole = ""
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+
+    def say(self, text: str) -> None:
+        self._whole = text
+        self.setToolTip(text)
+        self.setAccessibleName(text)
+        self._fit()
+
+    def whole(self) -> str:
+        """The text without the cut."""
+        return self._whole
+
+    def resizeEvent(self, event) -> None:  # type: ignore[no-untyped-def]
+        super().resizeEvent(event)
+        self._fit()
+
+    def _fit(self) -> None:
+        from PySide6.QtCore import Qt
+
+        self.setText(QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width()))
+
+
+class WardView(QWidget):
+    """Draws a WardContent; sends intents and changes nothing."""
+
+    opened = Signal(str)
+    """An episode is to be opened."""
+    selected = Signal(str)
+    """An episode was taken in hand."""
+
+    def __init__(self, theme: Theme) -> None:
+        super().__init__()
+        self._theme = theme
+        self._content: WardContent | None = None
+        self._by_key: dict[str, OnWard] = {}
+        self._order, self._shown = Order.CONCERN, Shown.ALL
+        self.first = SeeFirst(theme)
+        self.lanes = WardLanes(theme)
+        self.status = _Line()
+        self.status.setProperty("role", "quiet")
+        self.sort = ChoiceRow(self.tr("Sort by"), (
+            (Order.CONCERN, self.tr("concern")), (Order.BED, self.tr("bed")), (Order.DUE, self.tr("next due"))))  # fmt: skip
+        self.filter = ChoiceRow(self.tr("Show"), (
+            (Shown.ALL, self.tr("all")), (Shown.NOT_RESPONDING, self.tr("not responding")), (Shown.DUE, self.tr("due soon"))))  # fmt: skip
+        self.search = QLineEdit()
+        self.search.setPlaceholderText(self.tr("Find a bed"))
+        self.search.setAccessibleName(self.tr("Find an episode by bed, place or indication"))
+        self.search.setClearButtonEnabled(True)
+        self._legend: Legend | None = None
+        self._lay_out()
+        self._connect()
+
+    def _lay_out(self) -> None:
+        px = self._theme.px
+        tools = QHBoxLayout()
+        tools.setSpacing(px(16))
+        tools.addWidget(self.sort)
+        tools.addWidget(self.filter)
+        tools.addStretch(1)
+        self.search.setMaximumWidth(px(220))
+        tools.addWidget(self.search)
+        self._foot = QHBoxLayout()
+        self._foot.setSpacing(px(16))
+        self._foot.addWidget(self.status, 1)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(px(16), px(12), px(16), px(4))
+        column.setSpacing(px(8))
+        column.addWidget(self.first)
+        column.addLayout(tools)
+        column.addWidget(self.lanes, 1)
+        column.addLayout(self._foot)
+        self._renew_legend()
+
+    def _connect(self) -> None:
+        self.first.opened.connect(self.opened)
+        self.lanes.lane_activated.connect(self.opened)
+        self.lanes.item_activated.connect(self._item_activated)
+        self.lanes.selection_changed.connect(self._selection_changed)
+        self.lanes.hovered.connect(self._hovered)
+        self.sort.chosen.connect(self._sort_chosen)
+        self.filter.chosen.connect(self._filter_chosen)
+        self.search.textChanged.connect(self._search_changed)
+        self.search.returnPressed.connect(self.lanes.setFocus)
+
+    # what to show
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size."""
+        self._theme = theme
+        self.first.set_theme(theme)
+        self.lanes.set_theme(theme)
+        self._renew_legend()
+
+    def show_ward(self, content: WardContent) -> None:
+        """Show the ward; what was chosen stays chosen where it is still there."""
+        self._content = content
+        self._by_key = {e.figures.episode: e for e in content.episodes}
+        self._refresh()
+
+    def sort_by(self, order: Order) -> None:
+        """Sort the lanes."""
+        self._order = order
+        self.sort.choose(order)
+        self._refresh()
+
+    def show_only(self, which: Shown) -> None:
+        """Filter the lanes."""
+        self._shown = which
+        self.filter.choose(which)
+        self._refresh()
+
+    def select(self, key: str) -> None:
+        """Take an episode in hand, where its lane is shown."""
+        if key in self.keys():
+            self.lanes.select(key)
+
+    def keys(self) -> tuple[str, ...]:
+        """The episodes shown, from top to bottom."""
+        return () if self.lanes.spec is None else tuple(lane.key for lane in self.lanes.spec.lanes)
+
+    def _refresh(self) -> None:
+        content = self._content
+        if content is None:
+            return
+        ward = [e.figures for e in content.episodes]
+        top = first_to_see(ward)
+        words = LaneWords(Reader(content.zone, content.gas_unit), content.as_of)
+        labels = [f.label for f in ward]
+        lanes = [words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1)
+                 for f in ordered(shown(ward, self._shown, self.search.text()), self._order)]  # fmt: skip
+        self._tell_first(words)
+        self.lanes.set_spec(LanesSpec(
+            ZoneInfo(content.zone), content.shift.start, content.shift.end, tuple(lanes),
+            content.as_of if content.shift.start <= content.as_of <= content.shift.end else None, self.tr("now"),
+            self.tr("Bed"), self.tr("State now, next due"), self._empty_word(),
+            self.tr("Ward: {count} episodes along the shift's clock").format(count=len(lanes)),
+        ))  # fmt: skip
+        self.status.say(self.lanes.sentence_of_selection())
+
+    def _tell_first(self, words: LaneWords) -> None:
+        assert self._content is not None
+        top = first_to_see([e.figures for e in self._content.episodes])
+        if top is None:
+            self.first.show_first("", "", "", None)
+            return
+        flag = strongest_flag(top)
+        why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)
+        self.first.show_first(top.episode, top.label, why, Tier(flag.tier) if flag is not None else None)
+
+    def _empty_word(self) -> str:
+        if self._content is not None and self._content.episodes:
+            return self.tr("No episode fits. Show all with Alt+4.")
+        return self.tr("No episode yet. Ctrl+N begins one, Ctrl+T takes in a file.")
+
+    def _renew_legend(self) -> None:
+        if self._legend is not None:
+            self._foot.removeWidget(self._legend)
+            self._legend.deleteLater()
+        self._legend = Legend(self._theme)
+        self._foot.addWidget(self._legend)
+
+    # what the person does
+
+    def _selection_changed(self, key: str, item: LaneItem | None) -> None:  # noqa: ARG002
+        self.status.say(self.lanes.sentence_of_selection())
+        self.selected.emit(key)
+
+    def _hovered(self, words: str) -> None:
+        self.status.say(words or self.lanes.sentence_of_selection())
+
+    def _item_activated(self, key: str, item: object) -> None:  # noqa: ARG002
+        self.opened.emit(key)
+
+    def _sort_chosen(self, key: str) -> None:
+        self.sort_by(Order(key))
+
+    def _filter_chosen(self, key: str) -> None:
+        self.show_only(Shown(key))
+
+    def _search_changed(self, text: str) -> None:  # noqa: ARG002
+        self._refresh()
