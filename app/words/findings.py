@@ -17,7 +17,6 @@ GAS: Final[dict[str, str]] = {
     "gas.consistency_needs_three": "pH, PCO2 and bicarbonate are needed to check them against each other",
     "gas.fio2_differs":
         "FiO2 on the gas ({gas_fio2:fraction}) and in the settings ({setting:fraction}) differ.",
-    "gas.fio2_unknown": "FiO2 not known",
     "gas.inconsistent":
         "pH, PCO2 and bicarbonate do not agree: {hco3:1} mmol/L reported, {calculated:1} calculated "
         "(at most {within:trim} apart is accepted).",

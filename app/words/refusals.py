@@ -15,7 +15,8 @@ TEMPLATES: Final[dict[str, str]] = {
         "{channel:name} {value:of} is outside the usual {low:of} to {high:of}. Record it all the same?",
     "entry.id_too_long": "The id '{value}' is too long: at most {accepted} characters are accepted.",
     "entry.in_future": "{at:time} lies in the future: it is {now:time} now. Accepted: {accepted}.",
-    "entry.no_episode": "[['{value}' is no usable key of an episode. ]]An entry needs its episode. Accepted: {accepted}.",
+    "entry.no_episode":
+        "[['{value}' is no usable key of an episode. ]]An entry needs its episode. Accepted: {accepted}.",
     "entry.no_number": "{channel:name} has no value. Accepted: {accepted}.",
     "entry.no_span": "[['{value}' is no usable length of time. ]]The span needs one. Accepted: {accepted}.",
     "entry.no_words": "{channel:name} has no text. Accepted: {accepted}.",
