@@ -6,9 +6,11 @@ Each gas is judged twice: against its anchor's baseline, and against the baselin
 
 from __future__ import annotations
 
+from bisect import bisect_left, bisect_right
 from dataclasses import dataclass, replace
 from functools import cached_property
-from math import isnan
+
+import numpy as np
 
 from core.judgement import arms
 from core.judgement import response_reasons as why
@@ -86,18 +88,32 @@ class _Judge:
         if first.running_before:
             reference = next((g for g in self.arterial if not g.off_support), None)
             return StartBaseline(reference, reference=True)
-        found = baseline(self.ctx, first, self.arterial, self._until(0))
+        found = baseline(self.ctx, first, self.arterial, self._untils[0])
         return StartBaseline(found.gas, found.why)
 
-    def _next(self, index: int) -> Anchor | None:
-        return next((a for a in self.anchors[index + 1 :] if a.judges), None)
+    @cached_property
+    def _untils(self) -> tuple[Instant | None, ...]:
+        """For each anchor, the first step of the next one that gases can count for."""
+        out: list[Instant | None] = []
+        later: Instant | None = None
+        for anchor in reversed(self.anchors):
+            out.append(later)
+            later = anchor.first_at if anchor.judges else later
+        return tuple(reversed(out))
 
-    def _until(self, index: int) -> Instant | None:
-        later = self._next(index)
-        return later.first_at if later is not None else None
+    @cached_property
+    def _steps(self) -> tuple[tuple[int, int, Step], ...]:
+        """Every step of the anchors that act: its minute, its anchor's index, the step; by time."""
+        made = (
+            (minute(step.at), i, step)
+            for i, a in enumerate(self.anchors)
+            if a.judges and not (a.kind == "start" and a.running_before)
+            for step in a.steps
+        )
+        return tuple(sorted(made, key=lambda row: row[0]))
 
     def response(self, index: int) -> ResponseFigure:
-        anchor, until = self.anchors[index], self._until(index)
+        anchor, until = self.anchors[index], self._untils[index]
         base = baseline(self.ctx, anchor, self.arterial, until) if anchor.judges else Baseline(None)
         judged = self._gases(index, base, until) if anchor.judges else ()
         said = headline(self.ctx, anchor, base, judged, until) if anchor.judges else _no_effect(anchor)
@@ -121,11 +137,10 @@ class _Judge:
     def _gases(self, index: int, base: Baseline, until: Instant | None) -> tuple[JudgedGas, ...]:
         anchor = self.anchors[index]
         limit = minute(anchor.at) + self.ctx.policy.response.window_to_min.value
+        first = minute(anchor.first_at) - anchor.running_before  # the reference may be of the first minute
         out: list[JudgedGas] = []
-        for gas in self.ctx.gases:
+        for gas in self.ctx.gases[bisect_right(self._gas_minutes, first) :]:
             m = minute(gas.at)
-            if m <= minute(anchor.first_at) and not (anchor.running_before and m == minute(anchor.first_at)):
-                continue
             if until is None or m <= minute(until):
                 out.append(self._judged(index, base, gas, until))
             elif m <= limit:
@@ -133,6 +148,10 @@ class _Judge:
             else:
                 break
         return tuple(out)
+
+    @cached_property
+    def _gas_minutes(self) -> list[int]:
+        return [minute(g.at) for g in self.ctx.gases]
 
     def _judged(self, index: int, base: Baseline, gas: GasFigure, until: Instant | None) -> JudgedGas:
         anchor = self.anchors[index]
@@ -191,14 +210,10 @@ class _Judge:
 
     def _also_changed(self, index: int, after: Instant, before: Instant) -> tuple[Step, ...]:
         """The steps of other anchors between two gases: what else could have made the difference."""
-        return tuple(
-            step
-            for i, a in enumerate(self.anchors)
-            if i != index and a.judges and minute(after) <= minute(a.at) < minute(before)
-            and not (a.kind == "start" and a.running_before)
-            for step in a.steps
-            if minute(after) <= minute(step.at) < minute(before)
-        )  # fmt: skip
+        steps = self._steps
+        low = bisect_left(steps, minute(after), key=lambda row: row[0])
+        high = bisect_left(steps, minute(before), key=lambda row: row[0])
+        return tuple(step for _, i, step in steps[low:high] if i != index)
 
     def _seen(
         self, first_at: Instant, base: GasFigure | None, gas: GasFigure, low: Instant, high: Instant
@@ -216,9 +231,17 @@ class _Judge:
             given_before=self._oxygen_given(first_at - 1), given_after=self._oxygen_given(gas.at),
         )  # fmt: skip
 
+    @cached_property
+    def _oxygen(self) -> tuple[list[int], list[bool]]:
+        """When the oxygen changed, and whether it was more than room air from then on."""
+        fio2, flow = self.ctx.settings.fio2, self.ctx.settings.o2_flow
+        given = np.where(np.isnan(fio2.v), flow.on(fio2.t) > 0, fio2.v > ROOM_AIR)
+        return fio2.t.tolist(), given.tolist()
+
     def _oxygen_given(self, at: Instant) -> bool:
-        fio2, flow = self.ctx.settings.fio2.at(at), self.ctx.settings.o2_flow.at(at)
-        return fio2 > ROOM_AIR if not isnan(fio2) else flow > 0
+        moments, given = self._oxygen
+        i = bisect_right(moments, at)
+        return i > 0 and given[i - 1]
 
     def _oxygen_by_spo2_alone(self, anchor: Anchor) -> bool:
         return anchor.oxygen_only and not self.at_risk

@@ -47,15 +47,17 @@ def baseline(ctx: Context, anchor: Anchor, gases: tuple[GasFigure, ...], until: 
     """
     rules = ctx.policy.response
     limit_h = (rules.baseline_age_start_h if anchor.kind == "start" else rules.baseline_age_change_h).value
-    before = up_to_minute(gases, anchor.first_at)
-    same = [] if anchor.running_before else [g for g in before if _same_support(ctx, anchor, g)]
-    if same and anchor.first_at - same[-1].at <= limit_h * HOUR:
-        return Baseline(same[-1])
-    reason = why.no_baseline(anchor.kind, limit_h, *_because(ctx, anchor, before, same))
+    count = bisect_right(gases, minute(anchor.first_at), key=lambda g: minute(g.at))
+    newest = None if anchor.running_before else next(
+        (g for g in reversed(gases[:count]) if _same_support(ctx, anchor, g)), None
+    )  # fmt: skip
+    if newest is not None and anchor.first_at - newest.at <= limit_h * HOUR:
+        return Baseline(newest)
+    reason = why.no_baseline(anchor.kind, limit_h, *_because(ctx, anchor, gases[:count], newest))
     if anchor.running_before:
         return Baseline(None, why=reason)
     late = minute(anchor.at) + rules.window_from_min.value
-    for gas in gases[len(before) :]:
+    for gas in gases[count:]:
         if minute(gas.at) >= late or (until is not None and minute(gas.at) > minute(until)):
             break
         if not gas.off_support:
@@ -78,12 +80,12 @@ def _before_support(ctx: Context, gas: GasFigure) -> bool:
 
 
 def _because(
-    ctx: Context, anchor: Anchor, before: tuple[GasFigure, ...], same: list[GasFigure]
+    ctx: Context, anchor: Anchor, before: tuple[GasFigure, ...], newest: GasFigure | None
 ) -> tuple[str, Instant | None]:
     if anchor.running_before:
         return "support was running", None
-    if same:
-        return "too old", same[-1].at
+    if newest is not None:
+        return "too old", newest.at
     if before:
         return "other support", before[-1].at
     venous = up_to_minute(of_site(ctx.gases, venous=True), anchor.first_at)

@@ -104,7 +104,9 @@ class Saturations:
 def saturation_points(ctx: Context) -> Saturations:
     """The SpO2 points of an episode. A quarter of an hour in which FiO2 changed has no FiO2."""
     series = _finite(ctx.episode.number("spo2"))
-    spot, bins = series.spots, _bins(ctx, series.machine)
+    machine = series.machine
+    recent = machine.between(span_start(ctx), ctx.as_of)
+    spot, bins = series.spots, _bins(ctx, recent if len(recent) else machine)
     fio2 = ctx.settings.fio2
     from_bins: Values = fio2.on(bins.first)
     same: Flags = from_bins == fio2.on(bins.last)

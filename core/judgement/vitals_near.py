@@ -6,6 +6,7 @@ the search.
 
 from __future__ import annotations
 
+from bisect import bisect_right
 from dataclasses import dataclass
 from functools import cached_property
 from statistics import median
@@ -34,14 +35,14 @@ class VitalsNear:
     policy: Policy
 
     @cached_property
-    def _rates(self) -> tuple[Series, tuple[Series, ...]]:
+    def _rates(self) -> _Sources:
         rr = self.episode.number("rr")
-        return _known(rr.spots), (_known(rr.machine), _known(self.episode.number("rr_total")))
+        return _sources(rr.spots, rr.machine, self.episode.number("rr_total"))
 
     @cached_property
-    def _saturations(self) -> tuple[Series, tuple[Series, ...]]:
+    def _saturations(self) -> _Sources:
         spo2 = self.episode.number("spo2")
-        return _known(spo2.spots), (_known(spo2.machine),)
+        return _sources(spo2.spots, spo2.machine)
 
     def rate(self, at: Instant, low: Instant, high: Instant) -> Found | None:
         """The respiratory rate nearest to `at`, later than `low` and not later than `high`."""
@@ -51,35 +52,45 @@ class VitalsNear:
         """The SpO2 nearest to `at`, later than `low` and not later than `high`."""
         return self._near(self._saturations, at, low, high)
 
-    def _near(
-        self, sources: tuple[Series, tuple[Series, ...]], at: Instant, low: Instant, high: Instant
-    ) -> Found | None:
+    def _near(self, sources: _Sources, at: Instant, low: Instant, high: Instant) -> Found | None:
         reach = int(self.policy.freshness.vitals_min.value * MINUTE)
-        spots, machines = sources
-        found = _nearest(spots, at, max(low, at - reach - 1), min(high, at + reach))
+        found = _nearest(sources, at, max(low, at - reach - 1), min(high, at + reach))
         if found is not None:
             return found
         span = int(self.policy.trend.device_median_min.value * MINUTE)
-        for machine in machines:
+        for machine in sources.machines:
             found = _median_before(machine, max(low, at - span), min(high, at))
             if found is not None:
                 return found
         return None
 
 
+@dataclass(frozen=True, slots=True)
+class _Sources:
+    """Spot values as lists, since a few of them are searched often; machines as arrays."""
+
+    t: list[int]
+    v: list[float]
+    machines: tuple[Series, ...]
+
+
+def _sources(spots: Series, *machines: Series) -> _Sources:
+    known = _known(spots)
+    return _Sources(known.t.tolist(), known.v.tolist(), tuple(_known(m) for m in machines))
+
+
 def _known(series: Series) -> Series:
     return series.cut(np.isfinite(series.v)) if len(series) else series
 
 
-def _nearest(series: Series, at: Instant, low: Instant, high: Instant) -> Found | None:
-    """The value nearest to `at` in (low, high]; of two as near, the earlier."""
-    if not len(series):
-        return None
-    i, j = (int(k) for k in np.searchsorted(series.t, [low, high], side="right"))
+def _nearest(sources: _Sources, at: Instant, low: Instant, high: Instant) -> Found | None:
+    """The spot value nearest to `at` in (low, high]; of two as near, the earlier."""
+    t = sources.t
+    i, j = bisect_right(t, low), bisect_right(t, high)
     if i >= j:
         return None
-    near = i + int(np.argmin(np.abs(series.t[i:j] - at)))
-    return Found(float(series.v[near]), int(series.t[near]), False)
+    near = min(range(i, j), key=lambda k: abs(t[k] - at))
+    return Found(sources.v[near], t[near], False)
 
 
 def _median_before(series: Series, low: Instant, high: Instant) -> Found | None:
