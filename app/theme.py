@@ -13,7 +13,8 @@ Sizes are pixels at 100 %; `Theme.px` scales them with the text (100-200 %).
 
 from dataclasses import dataclass, replace
 from enum import StrEnum
-from typing import Final
+from functools import lru_cache
+from typing import Any, Final
 
 from PySide6.QtCore import QT_TRANSLATE_NOOP, QCoreApplication
 from PySide6.QtGui import QColor, QFont, QFontDatabase, QPalette
@@ -56,7 +57,7 @@ class Tier(StrEnum):
     ESCALATE = "escalate"
 
 
-_VERDICT_WORDS: Final = {
+_VERDICT_WORDS: Final[dict[Verdict, Any]] = {
     Verdict.BETTER: QT_TRANSLATE_NOOP("verdict", "better"),
     Verdict.WORSE: QT_TRANSLATE_NOOP("verdict", "worse"),
     Verdict.MIXED: QT_TRANSLATE_NOOP("verdict", "mixed"),
@@ -65,13 +66,13 @@ _VERDICT_WORDS: Final = {
     Verdict.NOT_YET_KNOWN: QT_TRANSLATE_NOOP("verdict", "not yet known"),
     Verdict.NOT_JUDGED: QT_TRANSLATE_NOOP("verdict", "not judged"),
 }
-_STATE_WORDS: Final = {
+_STATE_WORDS: Final[dict[GasState, Any]] = {
     GasState.SEVERE: QT_TRANSLATE_NOOP("state", "severe"),
     GasState.ACIDOTIC: QT_TRANSLATE_NOOP("state", "acidotic"),
     GasState.RESOLVED: QT_TRANSLATE_NOOP("state", "resolved"),
     GasState.UNKNOWN: QT_TRANSLATE_NOOP("state", "state not known"),
 }
-_TIER_WORDS: Final = {
+_TIER_WORDS: Final[dict[Tier, Any]] = {
     Tier.REMARK: QT_TRANSLATE_NOOP("tier", "remark"),
     Tier.CONCERN: QT_TRANSLATE_NOOP("tier", "concern"),
     Tier.ESCALATE: QT_TRANSLATE_NOOP("tier", "escalate"),
@@ -254,8 +255,10 @@ def blend(over: str, under: str, share: float) -> QColor:
     return QColor(*(round(x * share + y * (1 - share)) for x, y in channels))
 
 
+@lru_cache(maxsize=64)
 def font_of(pixels: int, *, bold: bool = False) -> QFont:
-    """The platform's sans, DejaVu Sans after it, with tabular figures, `pixels` high."""
+    """The platform's sans, DejaVu Sans after it, with tabular figures, `pixels` high. Copy before changing it:
+    the same one is handed out again, for charts ask at every step."""
     font = QFontDatabase.systemFont(QFontDatabase.SystemFont.GeneralFont)
     family = font.family()
     font.setFamilies([family, "DejaVu Sans"])

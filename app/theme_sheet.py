@@ -21,6 +21,10 @@ QLabel {{ background: transparent; border: 0; }}
 QLabel[role="display"] {{ font-size: {display}px; font-weight: 600; }}
 QLabel[role="title"] {{ font-size: {title}px; font-weight: 600; }}
 QLabel[role="emphasis"] {{ font-size: {emphasis}px; font-weight: 600; }}
+QLabel[role="strong"] {{ font-weight: 600; }}
+QFrame[fact="true"] {{ background: transparent; border: 2px solid transparent; border-radius: {radius}px; }}
+QFrame[fact="true"]:hover {{ background: {wash}; }}
+QFrame[fact="true"]:focus {{ border-color: {accent}; background: {wash}; }}
 QLabel[role="quiet"] {{ color: {ink_quiet}; }}
 QLabel[role="caption"] {{ color: {ink_quiet}; font-size: {caption}px; }}
 

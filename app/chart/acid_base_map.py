@@ -1,5 +1,6 @@
 """The acid-base map: pH against PaCO2, iso-bicarbonate lines, acute and chronic bands, gases as a path."""
 
+from itertools import pairwise
 from math import hypot
 
 import numpy as np
@@ -7,8 +8,7 @@ from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
 from PySide6.QtGui import QColor, QHelpEvent, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPolygonF
 from PySide6.QtWidgets import QToolTip, QWidget
 
-from app.chart.marks import gas_mark, solid_pen
-from app.chart.row import draw_card
+from app.chart.marks import draw_card, gas_mark, solid_pen
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Values
 from app.chart.value_ticks import value_ticks, value_word
 from app.theme import Theme
@@ -177,7 +177,8 @@ class AcidBaseMap(QWidget):
             points = [p for p in self._points(plot, band.paco2, middle) if plot.contains(p)]
             if points:
                 width, at = metrics.horizontalAdvance(band.word), points[-1]
-                near = min(points, key=lambda p, x=at.x() - width / 2 - self.theme.px(8): abs(p.x() - x))
+                wanted = at.x() - width / 2 - self.theme.px(8)
+                near = points[int(np.argmin([abs(p.x() - wanted) for p in points]))]
                 room = QRectF(near.x() - width / 2, near.y() - metrics.height() / 2, width + 2, metrics.height())
                 painter.drawText(room, Qt.AlignmentFlag.AlignCenter, band.word)
 
@@ -190,7 +191,7 @@ class AcidBaseMap(QWidget):
         c, px = self.theme.colours, self.theme.px
         points = self._gas_points(plot)
         painter.setPen(solid_pen(c.ink, 1.4))
-        for one, other in zip(points, points[1:], strict=False):
+        for one, other in pairwise(points):
             _arrow(painter, one, other, px(10))
         taken = [QRectF(p.x() - px(9), p.y() - px(9), px(18), px(18)) for p in points]
         painter.setFont(self.theme.font(self.theme.type.caption, bold=True))
@@ -288,11 +289,12 @@ class AcidBaseMap(QWidget):
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         gases = () if self.spec is None else self.spec.gases
-        step = {Qt.Key.Key_Left: -1, Qt.Key.Key_Right: 1}.get(Qt.Key(event.key()))
+        step = {int(Qt.Key.Key_Left): -1, int(Qt.Key.Key_Right): 1}.get(event.key())
         if gases and step is not None:
             last = len(gases) - 1
             at = (0 if step > 0 else last) if self._chosen is None else min(max(self._chosen + step, 0), last)
             self._choose(at)
+            event.accept()
         elif event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and self._chosen is not None:
             self.gas_activated.emit(gases[self._chosen])
         else:

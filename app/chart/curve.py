@@ -14,7 +14,7 @@ _NOTHING = Envelope(
 )
 
 
-class EnvelopeCurve(pg.PlotCurveItem):
+class EnvelopeCurve(pg.PlotCurveItem):  # type: ignore[misc]  # pyqtgraph has no types
     """A line through the envelope of one series, in seconds since the origin.
 
     The pen is opaque and one pixel wide and antialiasing is off: anything else costs several times as much
@@ -39,7 +39,7 @@ class EnvelopeCurve(pg.PlotCurveItem):
         view = self.getViewBox()
         return QRectF() if view is None else view.viewRect()
 
-    def dataBounds(  # noqa: N802
+    def dataBounds(
         self, ax: int, frac: float = 1.0, orthoRange: object = None  # noqa: ARG002
     ) -> tuple[None, None]:
         return None, None  # ranges are ours; nothing asks the data for them

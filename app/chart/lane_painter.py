@@ -4,8 +4,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen
 
 from app.chart.lane_layout import LaneGeometry, Placed
-from app.chart.marks import fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
-from app.chart.row import draw_card
+from app.chart.marks import draw_card, fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
 from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.chart.time_ticks import ClockMark, date_word
 from app.theme import GasState, Theme
@@ -39,7 +38,8 @@ class LanePainter:
             painter.setFont(theme.font(theme.type.caption, bold=mark.midnight))
             width = painter.fontMetrics().horizontalAdvance(mark.label) + 2
             room = QRectF(x - width / 2, 0, width, g.head)
-            if not mark.label or room.right() > g.left + g.clock + pad or room.adjusted(-4, 0, 4, 0).intersects(plate):
+            outside = room.right() > g.left + g.clock + pad
+            if not mark.label or outside or room.adjusted(-4, 0, 4, 0).intersects(plate):
                 continue
             painter.setPen(QColor(c.ink if mark.midnight else c.ink_quiet))
             painter.drawText(room, Qt.AlignmentFlag.AlignCenter, mark.label)
@@ -207,11 +207,12 @@ class LanePainter:
                 self._ring(painter, p.box.adjusted(-1, -1, 1, 1), 2.0)
 
     def _draw_support_words(self, painter: QPainter, lane: Lane, taken: list[tuple[float, float]]) -> None:
+        top, ink = self.g.lane - self.theme.px(19), QColor(self.theme.colours.ink_quiet)
         painter.setFont(self.theme.font(self.theme.type.caption))
         for piece in lane.support:
             left, end = max(self.g.x(piece.start), self.g.left), self.g.x(piece.end)
             word = whole_or_none(painter, piece.word, end - left)
-            self._words(painter, word, left, self.g.lane - self.theme.px(19), QColor(self.theme.colours.ink_quiet), taken)
+            self._words(painter, word, left, top, ink, taken)
 
     def _draw_item(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
         item, theme = placed.item, self.theme
@@ -250,7 +251,8 @@ class LanePainter:
         foot = g.middle + g.thickest / 2
         painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
         painter.setFont(theme.font(theme.type.caption))
-        self._words(painter, placed.item.word, placed.x + theme.px(5), g.lane - theme.px(19), QColor(c.ink_quiet), taken)
+        left, top = placed.x + theme.px(5), g.lane - theme.px(19)
+        self._words(painter, placed.item.word, left, top, QColor(c.ink_quiet), taken)
 
     def _words(
         self, painter: QPainter, word: str, left: float, top: float, ink: QColor, taken: list[tuple[float, float]]

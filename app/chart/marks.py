@@ -11,7 +11,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen, QPolygonF
 
 from app.chart.shapes import Look
-from app.theme import GasState, Theme, Tier, Verdict
+from app.theme import RADIUS, GasState, Theme, Tier, Verdict
 
 
 def solid_pen(colour: QColor | str, width: float = 1.0) -> QPen:
@@ -26,7 +26,8 @@ def gas_outline(state: GasState, x: float, y: float, size: float) -> QPainterPat
     path, half = QPainterPath(), size / 2
     if state is GasState.SEVERE:
         w, h = half * 1.2, half * 1.05
-        path.addPolygon(QPolygonF([QPointF(x - w, y - h * 0.9), QPointF(x + w, y - h * 0.9), QPointF(x, y + h * 1.15)]))
+        corners = [(-w, -h * 0.9), (w, -h * 0.9), (0.0, h * 1.15)]
+        path.addPolygon(QPolygonF([QPointF(x + px, y + py) for px, py in corners]))
         path.closeSubpath()
     elif state is GasState.ACIDOTIC:
         path.addRect(QRectF(x - half * 0.9, y - half * 0.9, size * 0.9, size * 0.9))
@@ -42,7 +43,13 @@ def gas_outline(state: GasState, x: float, y: float, size: float) -> QPainterPat
 
 
 def gas_mark(
-    painter: QPainter, theme: Theme, state: GasState, verdict: Verdict | None, x: float, y: float, size: float,
+    painter: QPainter,
+    theme: Theme,
+    state: GasState,
+    verdict: Verdict | None,
+    x: float,
+    y: float,
+    size: float,
     doubtful: bool = False,
 ) -> None:
     """A gas: outline by state, fill by verdict. A doubtful one stands in a dotted ring."""
@@ -70,7 +77,13 @@ def gas_mark(
 
 
 def _fill(
-    painter: QPainter, path: QPainterPath, verdict: Verdict | None, colour: QColor, ground: QColor, x: float, y: float,
+    painter: QPainter,
+    path: QPainterPath,
+    verdict: Verdict | None,
+    colour: QColor,
+    ground: QColor,
+    x: float,
+    y: float,
     size: float,
 ) -> None:
     full = verdict in (Verdict.BETTER, Verdict.WORSE)
@@ -132,17 +145,16 @@ def _sign_lines(verdict: Verdict) -> tuple[tuple[tuple[float, float], ...], ...]
     }.get(verdict, ())
 
 
-def pennant(painter: QPainter, theme: Theme, tier: Tier, x: float, foot: float, size: float, quiet: bool = False) -> None:
+def pennant(
+    painter: QPainter, theme: Theme, tier: Tier, x: float, foot: float, size: float, quiet: bool = False
+) -> None:
     """A flag on its pole, the pole standing at (x, foot), `size` pixels high."""
     c = theme.colours
     colour = QColor(c.ink_quiet if quiet else c.tiers[tier])
     top, h, w = foot - size, size * 0.62, size * 0.85
     cloth = QPainterPath(QPointF(x, top))
-    if tier is Tier.ESCALATE:
-        points = [(w, 0.0), (w * 0.68, h / 2), (w, h), (0.0, h)]
-    else:
-        points = [(w, h / 2), (0.0, h)]
-    for px, py in points:
+    tails = [(w, 0.0), (w * 0.68, h / 2), (w, h)] if tier is Tier.ESCALATE else [(w, h / 2)]
+    for px, py in [*tails, (0.0, h)]:
         cloth.lineTo(x + px, top + py)
     cloth.closeSubpath()
     painter.save()
@@ -191,6 +203,16 @@ def spot(painter: QPainter, ink: QColor, ground: QColor, look: Look, x: float, y
 def _polygon(at: QPointF, radius: float, corners: int) -> QPolygonF:
     turns = (2 * pi * k / corners for k in range(corners))
     return QPolygonF([QPointF(at.x() + radius * cos(a), at.y() + radius * sin(a)) for a in turns])
+
+
+def draw_card(painter: QPainter, theme: Theme, rect: QRectF) -> None:
+    """A soft raised card with a hairline."""
+    painter.save()
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+    painter.setPen(QPen(QColor(theme.colours.line), 1))
+    painter.setBrush(QColor(theme.colours.raised))
+    painter.drawRoundedRect(rect.adjusted(0.5, 0.5, -0.5, -0.5), RADIUS, RADIUS)
+    painter.restore()
 
 
 def hatch(ink: QColor) -> QBrush:

@@ -75,8 +75,9 @@ class PanelRow(ClockRow):
 
     def _axis_width(self, scale: Scale) -> int:
         widest = max((value_word(v, scale.decimals) for v in (scale.low, scale.high)), key=len)
-        words = self.metrics()
-        return round(max(words.horizontalAdvance(widest + "0"), words.horizontalAdvance(scale.unit))) + self.theme.px(16)
+        metrics = self.metrics()
+        width = max(metrics.horizontalAdvance(word) for word in (widest + "0", scale.unit))
+        return round(width) + self.theme.px(16)
 
     def _own_axis(self) -> int:
         """Pixels the second scale takes; a row without one has its labels at the view's very edge."""

@@ -1,49 +1,56 @@
 """Pictures of charts at their own resolution, drawn by QPainter and never grabbed from a screen.
 
-Each takes anything that is `Pictured`: a chart widget laid out off-screen and painted into a device.
+A chart is laid out off-screen at the wanted size and painted into the device.
 """
 
 from pathlib import Path
-from typing import Protocol
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QMarginsF, QRectF, QSize, QSizeF, Qt
 from PySide6.QtGui import QColor, QImage, QPageSize, QPainter, QPdfWriter
-from PySide6.QtWidgets import QApplication, QWidget
+from PySide6.QtWidgets import QApplication
 
 from app.chart.acid_base_map import AcidBaseMap
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LanesSpec, MapSpec, StackSpec
-from app.chart.stack import PanelStack
 from app.theme import Theme
+
+if TYPE_CHECKING:
+    from app.chart.stack import PanelStack
 
 Spec = StackSpec | LanesSpec | MapSpec
 _DOTS_PER_INCH = 96  # one pixel of a chart is 1/96 inch on paper
 
 
-class Pictured(Protocol):
-    """A chart that can paint itself, whole, on `width` x `height` pixels."""
-
-    def paint_on(self, painter: QPainter, width: int, height: int) -> None: ...
-
-
-def chart_of(spec: Spec, theme: Theme, width: int, height: int, scale: float = 1.0) -> QWidget:
+def chart_of(
+    spec: Spec, theme: Theme, width: int, height: int, scale: float = 1.0
+) -> "PanelStack | WardLanes | AcidBaseMap":
     """A chart laid out off-screen at a size in pixels, to be painted with `scale` dots per pixel."""
-    chart: QWidget
-    if isinstance(spec, StackSpec):
-        chart = PanelStack(theme)
-    elif isinstance(spec, LanesSpec):
-        chart = WardLanes(theme)
-    else:
-        chart = AcidBaseMap(theme)
+    chart = _made(spec, theme)
     chart.setAttribute(Qt.WidgetAttribute.WA_DontShowOnScreen)
     chart.setAttribute(Qt.WidgetAttribute.WA_ShowWithoutActivating)
-    chart.set_spec(spec)  # type: ignore[attr-defined]
     chart.setMinimumHeight(0)
     chart.resize(width, height)
     chart.show()  # lays it out; it never reaches a screen
     QApplication.sendPostedEvents()
-    if isinstance(chart, PanelStack):
-        chart.use_pen_scale(scale)
+    if isinstance(spec, StackSpec):
+        chart.use_pen_scale(scale)  # type: ignore[union-attr]
+    return chart
+
+
+def _made(spec: Spec, theme: Theme) -> "PanelStack | WardLanes | AcidBaseMap":
+    if isinstance(spec, StackSpec):
+        from app.chart.stack import PanelStack  # brings pyqtgraph, which a picture of the ward does without
+
+        stack = PanelStack(theme)
+        stack.set_spec(spec)
+        return stack
+    if isinstance(spec, LanesSpec):
+        lanes = WardLanes(theme)
+        lanes.set_spec(spec)
+        return lanes
+    chart = AcidBaseMap(theme)
+    chart.set_spec(spec)
     return chart
 
 
@@ -103,7 +110,7 @@ def paint_chart(spec: Spec, theme: Theme, painter: QPainter, width: int, height:
 def _paint(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int, scale: float) -> None:
     chart = chart_of(spec, theme, width, height, scale)
     try:
-        chart.paint_on(painter, width, height)  # type: ignore[attr-defined]
+        chart.paint_on(painter, width, height)
     finally:
         chart.close()
         chart.deleteLater()

@@ -6,7 +6,7 @@ are gaps with a word. A settings change is a small tick above, with its words wh
 """
 
 from collections.abc import Callable, Iterator
-from itertools import groupby
+from itertools import groupby, pairwise
 
 import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
@@ -89,7 +89,7 @@ class RibbonRow(PanelRow):
         frame = self.frame()
         painter.save()
         painter.setFont(self.theme.font(self.theme.type.caption))
-        seen = [s for s in self.steps if frame.x(self.seconds(s.end)) > 0 and frame.x(self.seconds(s.start)) < frame.width]
+        seen = [s for s in self.steps if self.seconds(s.end) > frame.x0 and self.seconds(s.start) < frame.x1]
         for step in seen:
             for a, b in self._outside_breaks(step):
                 self._draw_step(painter, frame, step, a, b)
@@ -137,7 +137,7 @@ class RibbonRow(PanelRow):
     def _join_levels(self, painter: QPainter, frame: Frame, seen: list[RibbonStep]) -> None:
         """Upright edges between one step and the next."""
         painter.setPen(solid_pen(self.theme.colours.support_edge, 1.0))
-        for one, other in zip(seen, seen[1:], strict=False):
+        for one, other in pairwise(seen):
             x = float(frame.x(self.seconds(other.start)))
             if one.end != other.start or not 0 <= x <= frame.width:
                 continue
@@ -211,7 +211,7 @@ class RibbonRow(PanelRow):
         draw_ticks(painter, self.theme, area, self.ribbon.ticks, self._column)
 
     def _column(self, instant: int) -> float:
-        return self.view.pos().x() + float(self.frame().x(self.seconds(instant)))
+        return float(self.view.pos().x()) + float(self.frame().x(self.seconds(instant)))
 
 
 def draw_ticks(

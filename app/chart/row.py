@@ -11,12 +11,13 @@ from typing import Any
 import numpy as np
 import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen
+from PySide6.QtGui import QColor, QFontMetricsF, QPainter
 from PySide6.QtWidgets import QGraphicsItem, QGraphicsSceneWheelEvent, QStyleOptionGraphicsItem, QWidget
 
+from app.chart.marks import draw_card
 from app.chart.shapes import MICROSECONDS, Reading, Span
 from app.chart.time_ticks import ClockMark
-from app.theme import RADIUS, Theme
+from app.theme import Theme
 
 BACK, FRONT, CROSS = -1000.0, 1000.0, 2000.0  # below the curves, above them, above all
 
@@ -34,7 +35,7 @@ class Margins:
         return self.axis_right + self.gutter
 
 
-class ClockView(pg.ViewBox):
+class ClockView(pg.ViewBox):  # type: ignore[misc]  # pyqtgraph has no types
     """A view that moves in x only and asks its stack to move all rows together."""
 
     dragged = Signal(float)  # seconds to move the window by
@@ -194,10 +195,10 @@ class ClockRow:
         return QFontMetricsF(self.theme.font(size or self.theme.type.caption, bold=bold))
 
     def _whole(self) -> QRectF:
-        return self.item.rect()
+        return QRectF(self.item.rect())
 
     def _view_rect(self) -> QRectF:
-        return self.view.rect()
+        return QRectF(self.view.rect())
 
     def _right_side(self) -> QRectF:
         whole, left = self.item.rect(), self.margins.right
@@ -294,16 +295,6 @@ class ClockRow:
             x = float(frame.x(self.seconds(self.now)))
             if -1 <= x <= frame.width:
                 painter.fillRect(QRectF(round(x), 0, 2, frame.height), QColor(self.theme.colours.accent))
-
-
-def draw_card(painter: QPainter, theme: Theme, rect: QRectF) -> None:
-    """A soft raised card with a hairline."""
-    painter.save()
-    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-    painter.setPen(QPen(QColor(theme.colours.line), 1))
-    painter.setBrush(QColor(theme.colours.raised))
-    painter.drawRoundedRect(rect.adjusted(0.5, 0.5, -0.5, -0.5), RADIUS, RADIUS)
-    painter.restore()
 
 
 def visible(frame: Frame, start: float, end: float) -> tuple[float, float]:

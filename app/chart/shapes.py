@@ -147,9 +147,9 @@ class PanelSpec:
         for scale in self.scales:
             if not scale.low < scale.high:
                 raise ValueError(f"scale {scale.unit}: low {scale.low:g} must lie below high {scale.high:g}")
-        for part in (*self.traces, *self.bands, *self.areas):
-            if part.unit not in units:
-                raise ValueError(f"unit {part.unit!r} in panel {self.title!r}: {units} are accepted")
+        used = {t.unit for t in self.traces} | {b.unit for b in self.bands} | {a.unit for a in self.areas}
+        for unit in sorted(used.difference(units)):
+            raise ValueError(f"unit {unit!r} in panel {self.title!r}: {units} are accepted")
 
 
 @dataclass(frozen=True, slots=True)

@@ -20,7 +20,7 @@ _PANEL_LEAST = 96  # pixels at 100 %
 _RIBBON_WEIGHT = 1.1
 
 
-class PanelStack(pg.GraphicsView):
+class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
     """Draws a StackSpec. Keys: arrows pan (Shift: half a window), + and - zoom, Home start, End now, 0 all."""
 
     instant_changed = Signal(object)
@@ -176,6 +176,7 @@ class PanelStack(pg.GraphicsView):
         if self.instant is not None:
             self._point(self.instant)
         reduced = any(row.reduced for row in self.rows)
+        self.axis.show_note(self.spec.reduced_word if reduced else "")
         if reduced != self._reduced:
             self._reduced = reduced
             self.reduced_changed.emit(reduced)

@@ -6,6 +6,7 @@ from zoneinfo import ZoneInfo
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 
+from app.chart.marks import fitted
 from app.chart.ribbon import draw_ticks
 from app.chart.row import FRONT, ClockRow, Layer
 from app.chart.shapes import MICROSECONDS, Tick
@@ -20,6 +21,7 @@ class TimeAxisRow(ClockRow):
         super().__init__("", theme, origin)
         self.now_word = ""
         self.zone: ZoneInfo | None = None
+        self.note = ""
         self.left_word = ""
         self.labels = Layer(self.item, FRONT, self._whole, self._draw_labels)
 
@@ -45,6 +47,12 @@ class TimeAxisRow(ClockRow):
         self.show_window(start, end, marks)
         self.labels.update()
 
+    def show_note(self, note: str) -> None:
+        """Words at the right end, under the labels of the rows."""
+        if note != self.note:
+            self.note = note
+            self.labels.update()
+
     def _view_resized(self, _view: object = None) -> None:
         super()._view_resized(_view)
         self.labels.resized()
@@ -66,6 +74,12 @@ class TimeAxisRow(ClockRow):
         frame, theme = self.frame(), self.theme
         c, left, height = theme.colours, self.view.pos().x(), self.height()
         plates = self._plates(painter, height)
+        right = left + frame.width + theme.px(28)
+        room = QRectF(right, 0, self.item.rect().width() - right, height)
+        painter.setFont(theme.font(theme.type.caption))
+        painter.setPen(QColor(c.ink_quiet))
+        side = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
+        painter.drawText(room, side, fitted(painter, self.note, room.width()))
         nearest = left
         for mark in self.marks:
             if not mark.label:
