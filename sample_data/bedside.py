@@ -1,4 +1,4 @@
-"""What gets written down: vital signs as counted, gases as the analyser prints them, device readings by the minute."""
+"""What gets written down: vital signs as counted, gases as the analyser prints them, what devices show."""
 
 from __future__ import annotations
 
@@ -16,10 +16,11 @@ from sample_data.script import Act, Inputs, Setting
 from sample_data.simulation import Trajectory
 
 KPA = 7.50062
-PH_SD = 0.012
-PACO2_SD, PACO2_CV = 1.2, 0.029
+PACO2_CV = 0.03
+PH_PER_PACO2, PH_ANALYSER_SD = 0.36, 0.005
 PAO2_CV = 0.05
-"""What a repeat gas varies by without any change (Thorson, Chest 1983;84:14: range and CV of six gases in 50 min)."""
+"""What a repeat gas varies by without any change: SD of pH 0.012, of PaCO2 3 %, of PaO2 5 % (Thorson, Chest
+1983;84:14, six gases in 50 min). pH and PaCO2 vary together, so that bicarbonate stays nearly still."""
 DEVICE = "device"
 EVERY_MIN = {"leak": 1, "vte": 1, "rr_total": 1, "spo2": 1, "mv": 5, "pip": 5, "spont_percent": 5, "hr": 5}
 UNITS = {
@@ -59,7 +60,7 @@ def typed_rows(case: Case, true: Trajectory) -> Iterator[Row]:
         if act.minute < script.logged_from:
             continue  # drawn all the same, so that the log's start does not change what comes after
         for channel, value, unit in values:
-            yield Row(act.minute, channel, value, unit, act.by, act.note)
+            yield Row(act.minute, channel, value, unit, act.by)
 
 
 def _plain(act: Act, name: str, value: Setting) -> tuple[str, str, str]:
@@ -70,10 +71,14 @@ def _plain(act: Act, name: str, value: Setting) -> tuple[str, str, str]:
     return name, f"{value:g}", SETTING_UNITS.get(name, "")
 
 
-def _gas(case: Case, true: Trajectory, at: int, wanted: dict[str, Setting], dice: Dice) -> list[tuple[str, str, str]]:
+def _gas(
+    case: Case, true: Trajectory, at: int, wanted: dict[str, Setting], dice: Dice
+) -> list[tuple[str, str, str]]:
     paco2_true, pao2_true = float(true.paco2[at]), float(true.pao2[at])
-    ph = round(float(true.ph[at]) + dice.about(0, PH_SD, -0.04, 0.04), 2)
-    paco2 = paco2_true + dice.about(0, max(PACO2_SD, PACO2_CV * paco2_true), -9, 9)
+    # PaCO2 wanders and takes pH with it; a little of pH is the analyser's own.
+    drift = dice.about(0, PACO2_CV, -0.09, 0.09)
+    paco2 = paco2_true * (1.0 + drift)
+    ph = round(float(true.ph[at]) - PH_PER_PACO2 * drift + dice.about(0, PH_ANALYSER_SD, -0.015, 0.015), 2)
     pao2 = pao2_true * (1.0 + dice.about(0, PAO2_CV, -0.15, 0.15))
     sao2 = 100 * float(true.saturation[at]) + dice.about(0, 0.5, -1.5, 1.5)
     capillary = wanted["site"] == "capillary"
@@ -102,11 +107,21 @@ def _vitals(case: Case, true: Trajectory, at: int, dice: Dice) -> list[tuple[str
     gcs = int(np.floor(float(true.gcs[at]) + dice.between(0.2, 0.8)))
     gcs = min(max(gcs, 3), 15)
     rate = max(6, round(float(true.rate[at]) + dice.about(0, 1.3, -3, 3)))
-    stress = _stress(case, true)[at]
+    stress = _stress(true)[at]
     sbp = p.sbp + 14 * (float(stress) - 1.0) + dice.about(0, 5, -12, 12)
-    breathless = 9.5 * float(np.clip(0.15 + 0.8 * true.unmet[at] + 0.012 * (true.rate[at] - 16.0), 0.0, 1.0))
+    breathless = 10.0 * float(
+        np.clip(0.05 + 0.45 * true.unmet[at] + 0.024 * (true.rate[at] - 15.0), 0.0, 1.0)
+    )
     temp = p.temp + dice.about(0, 0.12, -0.3, 0.3)
-    worst = "marked" if breathless > 6.5 else "moderate" if breathless > 4.2 else "mild" if breathless > 2.2 else "none"
+    worst = (
+        "marked"
+        if breathless > 6.5
+        else "moderate"
+        if breathless > 4.2
+        else "mild"
+        if breathless > 2.2
+        else "none"
+    )
     acvpu = "alert" if gcs >= 15 else "confusion" if gcs >= 13 else "voice" if gcs >= 10 else "pain"
     return [
         ("rr", f"{rate}", "/min"), ("gcs", f"{gcs}", ""), ("acvpu", acvpu, ""), ("sbp", f"{sbp:.0f}", "mmHg"),
@@ -116,16 +131,20 @@ def _vitals(case: Case, true: Trajectory, at: int, dice: Dice) -> list[tuple[str
     ]  # fmt: skip
 
 
-def _stress(case: Case, true: Trajectory) -> Values:
+def _stress(true: Trajectory) -> Values:
     """1 as the patient came, less as breathing gets easier."""
-    unmet = np.maximum(float(true.unmet[5]), 0.15)
-    lack = np.maximum(0.92 - true.saturation, 0.0) * 4.0
-    return np.asarray(0.5 * true.unmet / unmet + 0.3 * true.rate / case.patient.rr + 0.2 * true.illness + lack)
+    raw = (
+        0.6 * true.unmet
+        + 0.025 * true.rate
+        + 0.15 * true.illness
+        + 3.0 * np.maximum(0.92 - true.saturation, 0.0)
+    )
+    return np.asarray((raw + true.fatigue) / float(raw[5]))
 
 
 def _heart(case: Case, true: Trajectory) -> Values:
-    resting = 68.0 + 8.0 * max(case.patient.temp - 37.0, 0.0)
-    return resting + (case.patient.hr - resting) * np.clip(_stress(case, true), 0.0, 1.6)
+    resting = 75.0 + 8.0 * max(case.patient.temp - 37.0, 0.0)
+    return resting + (case.patient.hr - resting) * np.clip(2.2 * _stress(true) - 1.2, 0.0, 1.5)
 
 
 def device_readings(case: Case, true: Trajectory, inputs: Inputs) -> dict[str, Values]:

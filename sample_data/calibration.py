@@ -44,7 +44,9 @@ def fit(p: Patient[Values]) -> Fitted:
     tidal = p.tidal_ml / 1000.0
     wasted = 1.0 - (ventilation / p.rr + p.fixed_dead_l) / tidal
     if np.any((wasted < 0.05) | (wasted > 0.85)):
-        raise ValueError(f"dead space share {wasted} is outside 0.05 to 0.85: tidal volume or rate does not fit PaCO2")
+        raise ValueError(
+            f"dead space share {wasted} is outside 0.05 to 0.85: tidal volume or rate does not fit PaCO2"
+        )
     whole = filling(p.rr, np.full_like(p.rr, OWN_INSPIRATION_S), p.resistance * p.compliance)
     zero = np.zeros_like(p.rr)
     own = needed_pressure(tidal / (p.compliance * whole.gain), whole.trapped, zero) / (1.0 - p.airway)

@@ -35,7 +35,7 @@ SCENARIOS: Mapping[str, Callable[[int, int], Case]] = MappingProxyType(
 FINDINGS: Mapping[str, str] = MappingProxyType(
     {
         "prompt_responder": "Better within two hours; nothing to do.",
-        "slow_responder": "Too little support at first; each step helps; better only after two hours.",
+        "slow_responder": "Too little support at first; each step helps; out of acidosis only after four hours.",
         "non_responder": "Not better at one to two hours on raised support, then worse: escalate.",
         "large_leak": "Better, then leak takes the gain: fix the mask before raising pressure.",
         "hypoxaemic_failure": "P/F falls on support while rate stays high: escalate.",
@@ -45,7 +45,7 @@ FINDINGS: Mapping[str, str] = MappingProxyType(
         "overdue_gas": "Support and oxygen were raised on a bad gas and no gas followed.",
         "kpa_ward": "Better; logged in kPa, FiO2 not known under an oxygen flow.",
         "already_running": "On support before logging began; steady.",
-        "stable": "Steady; no flag of weight.",
+        "stable": "Steady; a short time off the mask was not written down.",
     }
 )
 

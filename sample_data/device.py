@@ -26,9 +26,7 @@ class Delivered(NamedTuple):
     missed: Values
 
 
-def delivered(
-    ipap: Values, epap: Values, fit_leak: Values, wobble: Values, asynchrony: Values
-) -> Delivered:
+def delivered(ipap: Values, epap: Values, fit_leak: Values, wobble: Values, asynchrony: Values) -> Delivered:
     """What the machine achieves against a leak.
 
     `fit_leak` is the leak that the mask's fit makes at 10 cmH2O mean pressure; it grows as the root of
@@ -36,10 +34,10 @@ def delivered(
     """
     mean = np.maximum(epap + 0.35 * (ipap - epap), 0.5)
     leak = np.clip(fit_leak * wobble * np.sqrt(mean / REFERENCE_CMH2O), 0.0, CEILING_L_PER_MIN)
-    lost = 0.08 * np.maximum(leak - 25.0, 0.0)
+    lost = 0.09 * np.maximum(leak - 25.0, 0.0)
     attained_epap = np.maximum(epap - 0.5 * lost, np.minimum(epap, 1.0))
     attained_ipap = np.maximum(ipap - lost, attained_epap)
-    missed = np.clip(asynchrony + 0.010 * np.maximum(leak - 30.0, 0.0), 0.0, 0.75)
+    missed = np.clip(asynchrony + 0.011 * np.maximum(leak - 30.0, 0.0), 0.0, 0.75)
     return Delivered(leak, attained_ipap, attained_epap, missed)
 
 
@@ -49,8 +47,12 @@ def port_flow(mean_pressure: Values) -> Values:
 
 
 def shown_tidal_ml(tidal_l: Values, leak: Values) -> Values:
-    """Expired volume that the screen shows: gas that leaves past the mask is not counted back."""
-    return np.asarray(1000.0 * tidal_l * (1.0 - 0.45 * leak / (leak + 60.0)))
+    """Expired volume that the screen shows: gas that leaves past the mask is not counted back.
+
+    With the leak at its ceiling (mask off, blower on) next to nothing comes back.
+    """
+    counted = np.where(leak >= CEILING_L_PER_MIN - 1.0, 0.04, 1.0 - 0.45 * leak / (leak + 60.0))
+    return np.asarray(1000.0 * tidal_l * counted)
 
 
 def triggered_percent(own_rate: Values, set_rate: Values, missed: Values) -> Values:

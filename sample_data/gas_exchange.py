@@ -14,11 +14,11 @@ ALVEOLAR = 0.863
 """mmHg (mL/min STPD)^-1 (L/min BTPS): the constant of the alveolar ventilation equation."""
 SOLUBILITY = 0.0307
 """mmol/L of dissolved CO2 per mmHg at 37 degC."""
-FAST_ML_PER_MMHG_KG = 0.40
-SLOW_ML_PER_MMHG_KG = 1.30
-EXCHANGE_ML_PER_MIN_MMHG_KG = 0.045
-"""The stores. Together 1.7 mL/kg/mmHg, of the size Farhi and Rahn found in dogs (1955: 1.5); how they split,
-and how fast they mix, is chosen so that half a fall is done in about 4 min and its tail takes over an hour."""
+FAST_ML_PER_MMHG_KG = 0.33
+SLOW_ML_PER_MMHG_KG = 1.17
+EXCHANGE_ML_PER_MIN_MMHG_KG = 0.030
+"""The stores. Together 1.5 mL/kg/mmHg, as Farhi and Rahn found in dogs (1955); how they split,
+and how fast they mix, is chosen so that half a fall is done in about 5 min and its tail takes over an hour."""
 
 
 def steady_paco2(vco2: Values, va: Values) -> Values:

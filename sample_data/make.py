@@ -19,9 +19,9 @@ def night_files() -> dict[str, str]:
     night = simulate_night()
     made = {"notes.csv": notes_text(night)}
     made |= {f"device-{bed.key}.csv": device_text(bed, episode) for bed, episode in night}
-    made["truth.json"] = json.dumps(
-        {"about": INVENTED, "episodes": [_truth(b, e) for b, e in night]}, indent=1
-    ) + "\n"
+    made["truth.json"] = (
+        json.dumps({"about": INVENTED, "episodes": [_truth(b, e) for b, e in night]}, indent=1) + "\n"
+    )
     return made
 
 
@@ -30,7 +30,12 @@ def _truth(bed: Bed, episode: SimulatedEpisode) -> dict[str, object]:
     for name in ("responded_at", "gain_lost_at", "failed_at", "leak_from"):
         if facts[name] is not None:
             facts[name] = (bed.started + timedelta(minutes=facts[name])).isoformat(timespec="seconds")
-    return {"episode": bed.key, "kind": bed.kind, "started_at": bed.started.isoformat(timespec="seconds"), **facts}
+    return {
+        "episode": bed.key,
+        "kind": bed.kind,
+        "started_at": bed.started.isoformat(timespec="seconds"),
+        **facts,
+    }
 
 
 def main(arguments: list[str]) -> int:

@@ -22,13 +22,12 @@ how far patient and machine are out of step, sedation 0 to 1, mask on (1) or off
 
 @dataclass(frozen=True, slots=True)
 class Act:
-    """One thing at one minute. `what` is settings | event | gas | vitals | profile | hidden."""
+    """One thing at one minute. `what` is settings | event | gas | vitals | hidden."""
 
     minute: int
     what: str
     values: tuple[tuple[str, Setting], ...]
     by: str = ""
-    note: str = ""
 
 
 @dataclass
@@ -43,12 +42,11 @@ class Script:
     logged_from: int
     leak_definition: str = "unintentional"
     pressure_unit: str = "mmHg"
-    fio2_percent: bool = True
     acts: list[Act] = field(default_factory=list)
 
-    def settings(self, minute: int, by: str, note: str = "", **values: Setting) -> None:
+    def settings(self, minute: int, by: str, /, **values: Setting) -> None:
         """Change settings and log them."""
-        self._add(minute, "settings", values, by, note)
+        self._add(minute, "settings", values, by)
 
     def event(self, minute: int, channel: str, by: str, text: str = "") -> None:
         """Log an event. Breaks and the mask coming off or on also happen to the patient."""
@@ -69,13 +67,13 @@ class Script:
         for minute in minutes:
             self._add(minute, "vitals", {}, by)
 
-    def hidden(self, minute: int, **values: Setting) -> None:
+    def hidden(self, minute: int, /, **values: Setting) -> None:
         """Let something happen that nobody writes down."""
         self._add(minute, "hidden", values, "")
 
-    def _add(self, minute: int, what: str, values: dict[str, Setting], by: str, note: str = "") -> None:
+    def _add(self, minute: int, what: str, values: dict[str, Setting], by: str) -> None:
         if self.first <= minute <= self.last:
-            self.acts.append(Act(minute, what, tuple(values.items()), by, note))
+            self.acts.append(Act(minute, what, tuple(values.items()), by))
 
     def in_order(self) -> list[Act]:
         """The acts by time; those of one minute in the order written."""
@@ -98,6 +96,10 @@ class Inputs:
     asynchrony_extra: Values
     sedation: Values
     drive_extra: Values
+
+    def at(self, minute: int) -> Inputs:
+        """What acts in one minute: each array without its first axis."""
+        return Inputs(**{name: getattr(self, name)[minute] for name in self.__dataclass_fields__})
 
     @property
     def minutes(self) -> int:

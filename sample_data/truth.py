@@ -5,23 +5,29 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from sample_data.saturation import Values
 from sample_data.simulation import Trajectory
 
 LASTS_MIN = 15
-"""A true state counts when it lasts this long."""
-ANSWER_PH, ANSWER_PACO2 = 0.04, 4.0
-OXYGEN_ANSWER = 0.20
+ANSWER_LASTS_MIN = 30
+"""True states count when they last this long."""
+BASELINE_MIN = 25
+"""The course is compared with the true state this long before support, when the deciding gas is taken."""
+ANSWER_PH, ANSWER_PACO2, ANSWER_PF = 0.04, 4.0, 0.20
+PROMPT_MIN = 120
 
 
 @dataclass(frozen=True, slots=True)
 class Truth:
     """The truth of one episode; minutes count from the start of support, None where it never came.
 
-    `responded_at`: true pH up by 0.04 with PaCO2 down by 4 mmHg (or, in hypoxaemic failure, P/F up by a fifth),
-    lasting. `responded`: that within 120 min. `failed_at`: see `failed_why`.
-    `leak_from`: true leak above 40 L/min, lasting.
+    `responded_at`: from then, for half an hour, true pH is up by 0.04 and PaCO2 down by 4 mmHg (in hypoxaemic
+    failure: P/F up by a fifth). `responded`: that came within 120 min. `gain_lost_at`: more than half of the best
+    gain is gone afterwards. `failed_at`, `failed_why`: lasting, after the first hour: `acidosis` (pH below 7.25 and
+    no better than at the start), `oxygenation` (P/F at or below 146 mmHg in hypoxaemic failure), `narcosis` (GCS
+    down by 2, below 13), `exhausted`. `leak_from`: leak above 40 L/min, lasting.
     """
 
     responded: bool
@@ -34,62 +40,58 @@ class Truth:
     finding: str
 
 
-def lasting(state: Values, minutes: int = LASTS_MIN) -> int | None:
-    """The first index from which a state (0 or 1, shape (n,)) holds for so many minutes on end.
+def lasting(state: NDArray[np.bool_], minutes: int = LASTS_MIN) -> int | None:
+    """The first index from which a state, shape (n,), holds for so many minutes on end.
 
-    >>> lasting(np.array([0, 1, 0, 1, 1, 1.0]), 3)
+    >>> lasting(np.array([False, True, False, True, True, True]), 3)
     3
     """
-    held = np.convolve(state > 0, np.ones(minutes), "valid") >= minutes - 0.5
+    if state.size < minutes:
+        return None
+    held = np.convolve(state.astype(np.int64), np.ones(minutes, np.int64), "valid") == minutes
     found = np.flatnonzero(held)
     return int(found[0]) if found.size else None
 
 
 def truth_of(true: Trajectory, start: int, hypoxaemic: bool, finding: str) -> Truth:
     """Judge the true course from index `start`, the start of support."""
-    before = max(start - 5, 0)
-    answered = _answered(true, start, before, hypoxaemic)
-    responded_at = lasting(answered)
+    before = max(start - BASELINE_MIN, 0)
+    gain = true.pf / true.pf[before] - 1.0 if hypoxaemic else true.ph - true.ph[before]
+    gain = gain[start:]
+    enough = gain >= (ANSWER_PF if hypoxaemic else ANSWER_PH)
+    if not hypoxaemic:
+        enough &= true.paco2[before] - true.paco2[start:] >= ANSWER_PACO2
+    responded_at = lasting(enough, ANSWER_LASTS_MIN)
+    lost_at = None if responded_at is None else _lost(gain, responded_at)
     failed_at, why = _failed(true, start, before, hypoxaemic)
-    lost = None
-    if responded_at is not None:
-        later = lasting(_lost(true, start, before, hypoxaemic)[responded_at:])
-        lost = None if later is None else responded_at + later
-    leak_from = lasting((true.leak[start:] > 40.0).astype(np.float64))
-    prompt = responded_at is not None and responded_at <= 120
-    return Truth(prompt, responded_at, lost, failed_at is not None, failed_at, why, leak_from, finding)
+    return Truth(
+        responded=responded_at is not None and responded_at <= PROMPT_MIN,
+        responded_at=responded_at,
+        gain_lost_at=lost_at,
+        failed=failed_at is not None,
+        failed_at=failed_at,
+        failed_why=why,
+        leak_from=lasting(true.leak[start:] > 40.0),
+        finding=finding,
+    )
 
 
-def _answered(true: Trajectory, start: int, before: int, hypoxaemic: bool) -> Values:
-    if hypoxaemic:
-        return np.asarray(true.pf[start:] >= (1.0 + OXYGEN_ANSWER) * true.pf[before], np.float64)
-    up = true.ph[start:] - true.ph[before] >= ANSWER_PH
-    down = true.paco2[before] - true.paco2[start:] >= ANSWER_PACO2
-    return np.asarray(up & down, np.float64)
-
-
-def _lost(true: Trajectory, start: int, before: int, hypoxaemic: bool) -> Values:
-    """Of the best gain so far, more than half is gone."""
-    if hypoxaemic:
-        gain = true.pf[start:] - true.pf[before]
-    else:
-        gain = true.ph[start:] - true.ph[before]
-    best = np.maximum.accumulate(gain)
-    return np.asarray(gain < 0.5 * best, np.float64)
+def _lost(gain: Values, responded_at: int) -> int | None:
+    later = lasting((gain < 0.5 * np.maximum.accumulate(gain))[responded_at:])
+    return None if later is None else responded_at + later
 
 
 def _failed(true: Trajectory, start: int, before: int, hypoxaemic: bool) -> tuple[int | None, str]:
-    """The earliest lasting failure after the first hour of support."""
     hour = start + 60
-    signs: dict[str, Values] = {
-        "narcosis": true.gcs[hour:] < np.minimum(true.gcs[before] - 2.0, 13.0),
+    signs: dict[str, NDArray[np.bool_]] = {
+        "narcosis": true.gcs[hour:] < min(float(true.gcs[before]) - 2.0, 13.0),
         "exhausted": true.fatigue[hour:] > 0.5,
     }
     if hypoxaemic:
         signs["oxygenation"] = true.pf[hour:] <= 146.0
     else:
         signs["acidosis"] = (true.ph[hour:] < 7.25) & (true.ph[hour:] < true.ph[before] + 0.02)
-    found = [(at, why) for why, s in signs.items() if (at := lasting(np.asarray(s, np.float64))) is not None]
+    found = [(at, why) for why, sign in signs.items() if (at := lasting(sign)) is not None]
     if not found:
         return None, ""
     at, why = min(found)

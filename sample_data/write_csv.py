@@ -45,9 +45,11 @@ def profile_rows(bed: Bed, episode: SimulatedEpisode) -> list[Row]:
         facts.append(("sofa", f"{person.sofa}", ""))
     if case.script.logged_from <= 0:
         facts += [
-            ("arrived_at", _iso(start - timedelta(minutes=85)), ""), ("decided_at", _iso(start - timedelta(minutes=18)), ""),
+            ("arrived_at", _iso(start - timedelta(minutes=85)), ""),
+            ("decided_at", _iso(start - timedelta(minutes=8)), ""),
             ("started_at", _iso(start), ""),
-        ]  # fmt: skip
+        ]
+    facts += [(channel, text, "") for channel, text in bed.facts]
     return [Row(at, c, v, u, by, INVENTED if i == 0 else "") for i, (c, v, u) in enumerate(facts)]
 
 
@@ -74,7 +76,5 @@ def notes_text(night: Iterable[tuple[Bed, SimulatedEpisode]]) -> str:
 def device_text(bed: Bed, episode: SimulatedEpisode) -> str:
     """`device-*.csv`: what the machines of one episode wrote; only leak says how it is defined."""
     definition = episode.case.script.leak_definition
-    rows = [
-        (*cells(bed, row), definition if row.channel == "leak" else "") for row in episode.device()
-    ]
+    rows = [(*cells(bed, row), definition if row.channel == "leak" else "") for row in episode.device()]
     return as_text(LEAK_HEADER, rows)
