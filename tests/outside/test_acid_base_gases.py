@@ -143,6 +143,25 @@ def test_compensation_examples() -> None:
     assert acid_base.ph_from_bicarbonate(26.0, 12.0) == pytest.approx(7.28, abs=0.005)
 
 
+def test_metabolic_alkalosis_rule() -> None:
+    """PCO2 = 0.7 (HCO3 - 24) + 40: at 34 mmol/L 47 mmHg; at 44, 54."""
+    assert compensation.expected_paco2_metabolic_alkalosis(34.0) == pytest.approx(47.0)
+    assert compensation.expected_paco2_metabolic_alkalosis(44.0) == pytest.approx(54.0)
+
+
+def test_base_excess_rule_of_chronic_hypercapnia() -> None:
+    """Schlichtig 1998, from memory: 0.4 mmol/L per mmHg of PaCO2."""
+    assert compensation.expected_sbe_chronic(60.0) == pytest.approx(8.0)
+    assert compensation.expected_sbe_chronic(40.0) == 0.0
+
+
+def test_usual_paco2_is_the_chronic_rule_read_backwards() -> None:
+    """A heuristic computed here; the University of Washington case 5 prints a usual PCO2 of 58 at HCO3 31."""
+    assert compensation.usual_paco2_estimate(31.0) == pytest.approx(60.0)
+    row = GASES["UW5"]
+    assert compensation.usual_paco2_estimate(number(row, "HCO3_reported")) == pytest.approx(58.0, abs=3.0)
+
+
 def test_hydrogen_rules_of_thumb() -> None:
     """Per +10 mmHg from 40: acute +8 nmol/L, chronic +3, as printed; the linear pH rule is the same rule."""
     for rule, nmol in ((compensation.expected_ph_acute, 8.0), (compensation.expected_ph_chronic, 3.0)):

@@ -68,6 +68,12 @@ def test_pf_ratio(key: str) -> None:
     assert oxygenation.pf_ratio(pao2, fio2) == pytest.approx(printed, abs=0.6)
 
 
+def test_pf_at_altitude() -> None:
+    """The 2012 definition corrects above 1000 m by PB / 760: at 1500 m (about 634 mmHg) P/F 240 counts as 200."""
+    assert oxygenation.pf_ratio_at_altitude(96.0, 0.4, 634.0) == pytest.approx(200.2, abs=0.06)
+    assert oxygenation.pf_ratio_at_altitude(96.0, 0.4, 760.0) == pytest.approx(240.0)
+
+
 @pytest.mark.parametrize("key", having("sat_Severinghaus_pct"))
 def test_severinghaus_of_the_gases(key: str) -> None:
     pao2, printed = numbers(GASES[key], "pO2_mmHg", "sat_Severinghaus_pct")

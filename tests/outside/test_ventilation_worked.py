@@ -23,6 +23,12 @@ def test_alveolar_ventilation_equation() -> None:
     assert co2_course.steady_paco2(200.0, 4.3) == pytest.approx(40.1, abs=0.06)
 
 
+def test_minute_and_alveolar_ventilation() -> None:
+    """By definition: 400 mL x 25 /min is 10 L/min; less 150 mL of dead space a breath, 6.25 (computed here)."""
+    assert ventilation.minute_ventilation(400.0, 25.0) == pytest.approx(10.0)
+    assert ventilation.alveolar_ventilation(400.0, 25.0, 150.0) == pytest.approx(6.25)
+
+
 def test_ventilation_for_a_wished_paco2() -> None:
     """8 L/min at 60 mmHg: 9.6 for 50."""
     assert ventilation.minute_ventilation_for_paco2(8.0, 60.0, 50.0) == pytest.approx(9.6)
@@ -77,3 +83,8 @@ def test_the_closed_form_solves_the_mass_balance() -> None:
 def test_port_leak(pressure: float, leak: float) -> None:
     """Orifice model: 30 L/min at 14 cmH2O (Borel, Chest 2009;135:669, author from memory) gives k 8.02."""
     assert tidal_volume_trust.port_leak(pressure, 8.02) == pytest.approx(leak, abs=0.06)
+
+
+def test_leaked_share() -> None:
+    """By definition (computed here): 24 L/min over 1 s is 400 mL; beside 400 mL expired that is one half."""
+    assert tidal_volume_trust.leaked_share(400.0, 24.0, 1.0) == pytest.approx(0.5)
