@@ -38,8 +38,8 @@ from storage.draft_batch import (
 )
 from storage.engine import BUSY_SECONDS
 from storage.errors import StoreError, store_error
-from storage.ledger import append_batch
-from storage.rules import is_device_channel
+from storage.ledger import append_batch, replaced_entries
+from storage.rules import Replaced, is_device_channel
 
 __all__ = ["Changes", "Receipt", "SourceFacts", "Store", "StoreError"]
 
@@ -219,10 +219,13 @@ class Store:
 
     def known_entry_ids(self, ids: Sequence[str]) -> frozenset[str]:
         """Those of `ids` that are entries of the store."""
-        from storage.ledger import replaced_entries
-
         with self._opened.database.read() as connection:
             return frozenset(replaced_entries(connection, ids))
+
+    def replaced(self, entry_id: str) -> Replaced | None:
+        """What the rules need to know of an entry that is to be replaced; None where the store has it not."""
+        with self._opened.database.read() as connection:
+            return replaced_entries(connection, [entry_id]).get(entry_id)
 
     # -- what is kept beside the entries ---------------------------------------------------------------
 

@@ -1,0 +1,120 @@
+"""What an intake finds in a file: rows it refuses, rows it doubts, and what it would add to the store."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from core.record.instant import Instant
+from core.record.message import Message, Value
+from core.record.samples import DeviceSamples
+from storage.chunks import decode
+from storage.draft_batch import DraftChunk, DraftEntry, SourceFacts
+
+MAX_LISTED = 10_000
+"""Refusals and doubts that are listed; beyond them only their number is kept."""
+
+
+@dataclass(frozen=True, slots=True)
+class Refusal:
+    """A row that cannot be taken: its line (the header is 1; 0 is the file), column, value, and why."""
+
+    line: int
+    column: str
+    value: str
+    message: Message
+
+
+@dataclass(frozen=True, slots=True)
+class Doubt:
+    """A row that is taken and marked, or a contradiction to look at: line, column, value, and why."""
+
+    line: int
+    column: str
+    value: str
+    message: Message
+
+
+@dataclass(frozen=True, slots=True)
+class Intake:
+    """What a file would add. It is taken whole or not at all: only without refusals.
+
+    `whole` is False where reading had to stop before the end of the file, so that nothing of it can be taken.
+    `repeated_in_store` counts rows that the store already has; they are skipped.
+    """
+
+    source: SourceFacts
+    entries: tuple[DraftEntry, ...] = ()
+    chunks: tuple[DraftChunk, ...] = ()
+    refusals: tuple[Refusal, ...] = ()
+    refused_rows: int = 0
+    repeated_in_store: int = 0
+    doubts: tuple[Doubt, ...] = ()
+    whole: bool = True
+
+    @property
+    def sample_count(self) -> int:
+        """How many device samples it would add."""
+        return sum(c.block.n for c in self.chunks)
+
+    @property
+    def samples(self) -> tuple[DeviceSamples, ...]:
+        """The device samples it would add, one block per episode and channel."""
+        grouped: dict[tuple[str, str], list[DraftChunk]] = {}
+        for c in self.chunks:
+            grouped.setdefault((c.episode, c.channel), []).append(c)
+        return tuple(_joined(chunks) for chunks in grouped.values())
+
+    @property
+    def episodes(self) -> tuple[str, ...]:
+        """The episodes it bears on, in order of appearance."""
+        keys = [d.entry.episode for d in self.entries] + [c.episode for c in self.chunks]
+        return tuple(dict.fromkeys(keys))
+
+
+def _joined(chunks: list[DraftChunk]) -> DeviceSamples:
+    parts = [decode(c.block.blob, c.block.t0) for c in chunks]
+    first = chunks[0]
+    t, v = np.concatenate([p[0] for p in parts]), np.concatenate([p[1] for p in parts])
+    return DeviceSamples(first.episode, first.channel, first.source, t, v, max(p[2] for p in parts))
+
+
+@dataclass(slots=True)
+class Findings:
+    """Refusals and doubts while a file is read; memory stays bounded however bad the file is."""
+
+    refusals: list[Refusal] = field(default_factory=list)
+    doubts: list[Doubt] = field(default_factory=list)
+    refused_lines: set[int] = field(default_factory=set)
+    refused_rows: int = 0
+
+    def refuse(self, line: int, column: str, value: str, message: Message) -> None:
+        """Note a row that cannot be taken."""
+        if line not in self.refused_lines:
+            self.refused_rows += 1
+        if len(self.refusals) < MAX_LISTED:
+            self.refusals.append(Refusal(line, column, value[:200], message))
+            self.refused_lines.add(line)
+
+    def doubt(self, line: int, column: str, value: str, message: Message) -> None:
+        """Note a row that is taken and marked."""
+        if len(self.doubts) < MAX_LISTED:
+            self.doubts.append(Doubt(line, column, value[:200], message))
+
+
+class UnreadableFileError(Exception):
+    """Reading cannot go on: what stands after this line cannot be told."""
+
+    def __init__(self, line: int, value: str, message: Message) -> None:
+        super().__init__(message.key)
+        self.line, self.value, self.message = line, value, message
+
+
+def unreadable(line: int, value: str, key: str, **values: Value) -> UnreadableFileError:
+    """The error that ends the reading of a file."""
+    return UnreadableFileError(line, value, Message(key, values))
+
+
+CLOCK_LEAD: Instant = 5 * 60 * 1_000_000
+"""A time may lead the clock by 5 minutes: clocks of machines differ by that much (common practice, no source)."""
