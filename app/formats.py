@@ -161,8 +161,16 @@ def quantity(channel: str, value: float | str | None, gas_unit: str = "mmHg") ->
         return gas_pressure(value, gas_unit)
     keeps_zeros = known.group is Group.GAS or channel == "temp"
     text = fixed(value, known.decimals) if keeps_zeros else trimmed(value, known.decimals)
-    unit = shown_unit(channel)
-    return f"{text} {unit}" if unit else text
+    return with_unit(text, shown_unit(channel))
+
+
+def with_unit(text: str, unit: str) -> str:
+    """A number and its unit; rates stand close, as in 24/min.
+
+    >>> with_unit("24", "/min"), with_unit("16", "cmH2O"), with_unit("7.40", "")
+    ('24/min', '16 cmH2O', '7.40')
+    """
+    return f"{text}{unit}" if not unit or unit.startswith("/") else f"{text} {unit}"
 
 
 def shown_unit(channel: str) -> str:

@@ -6,6 +6,7 @@ Text made here is plain. Where Qt could take it for rich text, pass it through `
 from __future__ import annotations
 
 import logging
+import re
 from collections.abc import Mapping
 from functools import lru_cache
 from types import MappingProxyType
@@ -17,6 +18,7 @@ __all__ = ["Reader", "sentence", "templates"]
 
 _log = logging.getLogger("luffmark")
 DEFAULT = Reader()
+_NAME_FIRST = re.compile(r"\{\w+:name\}")
 
 
 @lru_cache(maxsize=1)
@@ -26,10 +28,10 @@ def templates() -> Mapping[str, str]:
     Raises:
         ValueError: two catalogues name the same key.
     """
-    from app.words import findings, refusals, responses, surroundings
+    from app.words import findings, names, refusals, responses, surroundings
 
     found: dict[str, str] = {}
-    for catalogue in (refusals, surroundings, findings, responses):
+    for catalogue in (refusals, surroundings, findings, responses, names):
         twice = found.keys() & catalogue.TEMPLATES.keys()
         if twice:
             raise ValueError(f"message keys with two templates: {', '.join(sorted(twice))}")
@@ -38,7 +40,7 @@ def templates() -> Mapping[str, str]:
 
 
 def sentence(message: Message, reader: Reader = DEFAULT) -> str:
-    """The message in words, its first letter large where a template begins with a name.
+    """The message in words; its first letter is large where a template begins with a quantity's name.
 
     A key without words is shown with its values rather than hidden: a finding must not vanish.
 
@@ -51,4 +53,4 @@ def sentence(message: Message, reader: Reader = DEFAULT) -> str:
         values = ", ".join(f"{k} {v}" for k, v in message.values.items())
         return f"{message.key}: {values}" if values else message.key
     text = fill(reader.translate(template), message.values, reader)
-    return text[:1].upper() + text[1:] if template.startswith("{") and text[:2] != "pH" else text
+    return text[:1].upper() + text[1:] if _NAME_FIRST.match(template) and text[:2] != "pH" else text

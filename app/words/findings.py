@@ -69,6 +69,32 @@ GAS: Final[dict[str, str]] = {
         "(within {tolerance:trim}).",
 }  # fmt: skip
 
+COURSE: Final[dict[str, str]] = {
+    "course.at_gas": "measured at {gas_at:time}",
+    "course.before_first_gas": "before the first gas at {gas_at:time}",
+    "course.between_gases": "between the gases of {from_at:time} and {to_at:time}; never judged by",
+    "course.beyond_last_gas": "after the last gas at {gas_at:time}; never judged by",
+    "course.changed": "not drawn past the change at {changed_at:time}",
+    "course.no_gas": "no gas after this change",
+    "course.not_yet": "not before {at:time}",
+}  # fmt: skip
+
+TRENDS: Final[dict[str, str]] = {
+    "leak.definition_not_known": "what the device calls leak is not known: a trend only, no limit",
+    "leak.duty_assumed": "inspiration is taken as {share:fraction} of the breath",
+    "leak.no_values": "no leak values",
+    "leak.pressure_not_known": "the port's own leak is not known without pressures",
+    "trend.few_points": "{points} points: too few to tell a trend from chance",
+    "trend.fio2_not_known": "FiO2 not known at {at:time}",
+    "trend.no_values": "no values",
+    "trend.predicted_weight_not_known": "predicted body weight not known (height and sex are needed)",
+    "trend.rate_not_known": "respiratory rate not known at {at:time}",
+    "trend.rox_validated_in_high_flow": "validated on high-flow cannula, not on a mask",
+    "trend.spo2_above_ceiling": "SpO2 {spo2:0} % at {at:time} is above {limit:0} %, where the curve is flat",
+    "trend.too_few_for_interval": "{points} points: at least {needed} are needed for an interval",
+    "trend.too_few_points": "{points} point(s): at least {needed} are needed for a slope",
+}  # fmt: skip
+
 UNDEFINED: Final[dict[str, str]] = {
     "undefined.air_only": "holds on room air only",
     "undefined.alveolar_not_positive": "the alveolar PO2 would not be positive: a value is wrong",
@@ -135,4 +161,4 @@ SCORES: Final[dict[str, str]] = {
     "tidal_volume.void": "tidal volume void: the mask was off",
 }  # fmt: skip
 
-TEMPLATES: Final[dict[str, str]] = SUPPORT | GAS | UNDEFINED | SCORES
+TEMPLATES: Final[dict[str, str]] = SUPPORT | GAS | COURSE | TRENDS | UNDEFINED | SCORES

@@ -12,7 +12,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "document.damaged": "Document {value} is not what was kept: its digest does not fit.",
     "document.unknown": "There is no document {value} in the store.",
     "doubt.unusual":
-        "{channel:name} {value:of} is outside the usual {low:of} to {high:of}. Record it all the same?",
+        "{channel:name} {value:of} is outside the usual {low:of} to {high:of}.",
     "entry.id_too_long": "The id '{value}' is too long: at most {accepted} characters are accepted.",
     "entry.in_future": "{at:time} lies in the future: it is {now:time} now. Accepted: {accepted}.",
     "entry.no_episode":
@@ -40,6 +40,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "instant.out_of_range": "The time '{value}' is out of range. Accepted: years 1990 to 2099.",
     "instant.unreadable":
         "'{value}' is no time. Accepted: ISO 8601 with offset, e.g. 2026-03-28T02:10+00:00.",
+    "leak.definitions_mixed":
+        "Leak of episode {episode} was {first} and is {second} at the same time: which one is it?",
     "line.empty": "Nothing is typed yet. For example: {accepted}",
     "line.epap_needed": "A pressure support needs an EPAP, and none is in force. For example: {accepted}.",
     "line.long_ago": "That was {hours:hours} ago.",
@@ -72,11 +74,16 @@ TEMPLATES: Final[dict[str, str]] = {
     "row.columns": "The row has {found} fields; the header has {accepted}.",
     "row.quotes": "A quotation mark is not closed, or stands in a wrong place ({detail}).",
     "row.repeated": "The row stands in the file already, on line {first_line}. Accepted: {accepted}.",
+    "row.two_values": "{channel:name} has another value at the same moment on line {first_line}: {first:of}. "
+        "The later row counts.",
     "row.unknown_action": "'{value}' is no action. Accepted: {accepted}.",
     "row.unknown_zone": "'{value}' is no time zone. Accepted: {accepted}.",
+    "samples.too_many": "{count} device samples are too many for one block; at most {accepted} are accepted.",
     "samples.not_increasing": "The device samples of {channel:name} are not in order. Accepted: {accepted}.",
     "settings.ipap_not_above_epap": "IPAP {ipap:trim} is not above EPAP {epap:trim} cmH2O. "
         "Accepted: {accepted}.",
+    "settings.late_contradiction":
+        "With what came later, IPAP {ipap:trim} is not above EPAP {epap:trim} cmH2O. Accepted: {accepted}.",
     "time.repeated": "{value} came twice: the clock was set back. Say which: {accepted}.",
     "time.skipped": "{value} was never shown: the clock was set forward. Accepted: {accepted}.",
     "time.unreadable": "'{value}' is no time of day. Accepted: {accepted}.",

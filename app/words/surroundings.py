@@ -22,6 +22,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "file.not_allowed": "{path} may not be opened or written by you. Choose another place or ask who owns it.",
     "file.read_only_disk": "{path} lies on a disk that takes no writing. Choose another place.",
     "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
+    "intake.refused": "{path} was not taken: {rows} row(s) refused. Accepted: {accepted}.",
     "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}). "
         "Put the key file of a backup in its place.",
     "key.envelope_missing": "The key file {path} that belongs beside the store is not there. "

@@ -153,7 +153,7 @@ def quantity_text(quantity: str, value: float, reader: Reader, *, sign: bool = F
     unit = {"pf": "mmHg", "rr": "/min", "spo2": "%", "gcs": "", "fio2": ""}.get(quantity, "")
     if quantity == "fio2":
         return formats.fraction(value)
-    return f"{text} {unit}".strip()
+    return formats.with_unit(text, unit)
 
 
 def _quantity(*, sign: bool = False, noise: bool = False) -> Writer:

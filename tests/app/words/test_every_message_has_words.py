@@ -13,6 +13,7 @@ import pytest
 
 from app.words import templates
 from app.words.template import MISSING, Reader, all_fields, fields, fill
+from core.judgement.policy import shipped_policy
 from core.physiology.classification import Disturbance
 from core.record.channels import SITES
 
@@ -23,7 +24,11 @@ NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|txt|json|pdf|png|key|new|se
 LOG = {"entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo", "episode.begin"}
 """Names of operations in the ledger, written like keys."""
 
+POLICY = shipped_policy()
 DYNAMIC = {
+    "marker.": sorted(POLICY.markers),
+    "due_item.": sorted(POLICY.due),
+    "group.": sorted({m.group for m in POLICY.markers.values()}),
     "gas_class.": [d.name.lower() for d in Disturbance],
     "specimen.": [f"{s}_is_not_arterial" for s in SITES],
     "response.": ["serves_as_baseline", "before_baseline", "baseline_early", "early", "capillary",

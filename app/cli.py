@@ -1,0 +1,195 @@
+"""The command line. Exit 0: done. 1: refused, with one clear line on stderr. 2: wrong usage.
+
+The grammar stands here; what a command does stands in `app.commands`, imported only when it is called.
+"""
+
+from __future__ import annotations
+
+import argparse
+import sys
+from collections.abc import Callable, Sequence
+from importlib import import_module
+from pathlib import Path
+
+from core.record.instant import Instant
+from core.record.message import RecordError
+
+DONE, REFUSED, WRONG_USAGE = 0, 1, 2
+_CAUTION = (
+    "Supports and never replaces clinical judgement. It is no alarm and no monitor; "
+    "local policy and licensed practice come first."
+)
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run a command; without one, open the window. Returns the exit code."""
+    _speak_utf8()
+    args = parser().parse_args(arguments)
+    from app.commands.context import Context, refused
+
+    context = Context.of(args)
+    try:
+        return int(import_module(f"app.commands.{args.module}").run(context, args))
+    except BrokenPipeError:
+        sys.stderr.close()  # whoever read our output has enough
+        return DONE
+    except KeyboardInterrupt:
+        return REFUSED
+    except Exception as error:
+        return refused(error)
+
+
+def _speak_utf8() -> None:
+    """Units and dashes need UTF-8 whatever the console's page; what it lacks is replaced, never fatal."""
+    from io import TextIOWrapper
+
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, TextIOWrapper):
+            stream.reconfigure(encoding="utf-8", errors="replace")
+
+
+def parser() -> argparse.ArgumentParser:
+    """The grammar of the command line."""
+    common = _common()
+    top = argparse.ArgumentParser(
+        prog="luffmark", parents=[common], epilog=_CAUTION,
+        description="Shift log, response figures, flags and handover for mask ventilation. Without a command the "
+        "window opens.",
+    )  # fmt: skip
+    top.set_defaults(module="window")
+    top.add_argument("--version", action="version", version=_version())
+    commands = top.add_subparsers(title="commands", metavar="COMMAND")
+
+    def command(name: str, help: str, module: str | None = None) -> argparse.ArgumentParser:
+        made = commands.add_parser(name, help=help, description=help, parents=[common], epilog=_CAUTION)
+        made.set_defaults(module=module or name)
+        return made
+
+    for add in (_showing, _recording, _printing, _keeping):
+        add(command)
+    return top
+
+
+Command = Callable[..., argparse.ArgumentParser]
+
+
+def _showing(command: Command) -> None:
+    command("demo", "open the window on the sample shift in a throw-away store")
+    figures = command("figures", "computed figures of one episode or of all")
+    figures.add_argument("episode", nargs="?", help="an episode's key; all when left out")
+    _moments(figures)
+
+
+def _recording(command: Command) -> None:
+    intake = command("intake", "take log files (CSV) into the store, each whole or not at all")
+    intake.add_argument("files", nargs="+", type=Path, metavar="FILE")
+    intake.add_argument("--keep-recording-times", action="store_true",
+                        help="make the new store an imported one: recorded_at of the files stands")  # fmt: skip
+    log = command("log", 'log one line as typed in the window, e.g. luffmark log N4-07 "14:20 16/6 35"')
+    log.add_argument("episode")
+    log.add_argument("line")
+    log.add_argument("--yes", action="store_true", help="answer yes to the line's questions")
+    log.add_argument("--new", action="store_true", help="begin the episode if the store does not know it")
+    correct = command("correct", "correct, withdraw or move an entry; the old one stays visible")
+    correct.add_argument("episode")
+    correct.add_argument("entry", nargs="?", help="an entry's id or its beginning; left out: list the entries")
+    what = correct.add_mutually_exclusive_group()
+    what.add_argument("--value", help="the right value")
+    what.add_argument("--withdraw", action="store_true", help="the entry must not count")
+    what.add_argument("--move-to", metavar="EPISODE", help="the entry belongs to another episode")
+    correct.add_argument("--unit", default="", help="the unit of --value")
+    correct.add_argument("--at", type=moment, metavar="T", help="the right time")
+    correct.add_argument("--reason", default="", help="why")
+    correct.add_argument("--yes", action="store_true", help="answer yes to the value's questions")
+
+
+def _printing(command: Command) -> None:
+    handover = command("handover", "the handover sheet of a shift, as PDF or as plain text")
+    handover.add_argument("--from", dest="start", type=moment, required=True, metavar="T", help="the shift's start")
+    handover.add_argument("--to", dest="end", type=moment, required=True, metavar="T", help="the shift's end")
+    handover.add_argument("--out", type=Path, metavar="FILE", help=".pdf or .txt; left out: text on the screen")
+    handover.add_argument("--paper", choices=("A4", "Letter"), default="A4")
+    handover.add_argument("--given-by", default="", metavar="NAME")
+    handover.add_argument("--taken-by", default="", metavar="NAME")
+    handover.add_argument("--as-known-at", type=moment, metavar="T", help="only what was recorded by then")
+    picture = command("picture", "an episode's panels as a picture")
+    picture.add_argument("episode")
+    picture.add_argument("--out", type=Path, required=True, metavar="FILE", help=".png, .svg or .pdf")
+    picture.add_argument("--size", type=size, default=(1280, 800), metavar="WxH", help="in pixels (1280x800)")
+    picture.add_argument("--theme", choices=("light", "dark"), default="light")
+    _moments(picture)
+    screens = command("screens", "a PNG of each screen of the window, of the sample shift unless --store is given")
+    screens.add_argument("--out", type=Path, required=True, metavar="FOLDER")
+
+
+def _keeping(command: Command) -> None:
+    command("verify", "check the store: file, chain, safeguards, rules")
+    backup = command("backup", "write a backup while others go on working", "backup")
+    backup.add_argument("file", type=Path)
+    restore = command("restore", "make a new store of a backup; nothing is overwritten", "restore")
+    restore.add_argument("file", type=Path, help="the backup")
+    export = command("export", "write entries and device samples as a log file (CSV) that intake takes")
+    export.add_argument("--out", type=Path, required=True, metavar="FILE")
+    export.add_argument("--episode", action="append", default=[], help="only this one; may be repeated")
+    policy = command("policy", "show the policy in force, or check or put in force a policy file")
+    policy.add_argument("what", choices=("show", "check", "put"))
+    policy.add_argument("file", nargs="?", type=Path)
+
+
+def _common() -> argparse.ArgumentParser:
+    """What may stand before or after any command."""
+    common = argparse.ArgumentParser(add_help=False, argument_default=argparse.SUPPRESS)
+    group = common.add_argument_group("everywhere")
+    group.add_argument("--store", type=Path, metavar="PATH", help="the store's file (default: your data folder)")
+    group.add_argument("--by", metavar="INITIALS", help="who does it (default: your login name)")
+    group.add_argument("--passphrase-fd", type=int, metavar="N", help="read the passphrase from this descriptor")
+    group.add_argument("--json", action="store_true", help="answer in JSON")
+    group.add_argument("--gas-unit", choices=("mmHg", "kPa"), help="unit of gas pressures in text")
+    group.add_argument("--zone", metavar="ZONE", help="time zone of wall-clock times (default: this computer's)")
+    return common
+
+
+def _moments(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--as-of", type=moment, metavar="T", help="ignore what happened later (default: now)")
+    command.add_argument("--as-known-at", type=moment, metavar="T", help="ignore what was recorded later")
+
+
+def moment(text: str) -> Instant:
+    """An instant as ISO 8601 with offset.
+
+    >>> moment("1970-01-01T00:00:00Z")
+    Traceback (most recent call last):
+    argparse.ArgumentTypeError: The time '1970-01-01T00:00:00Z' is out of range. Accepted: years 1990 to 2099.
+    """
+    from app.words import sentence
+    from core.record.instant import parse
+
+    try:
+        return parse(text)
+    except RecordError as error:
+        raise argparse.ArgumentTypeError(sentence(error.message)) from None
+
+
+def size(text: str) -> tuple[int, int]:
+    """A picture's width and height in pixels.
+
+    >>> size("1280x800")
+    (1280, 800)
+    """
+    width, _, height = text.lower().partition("x")
+    if not (width.isdigit() and height.isdigit() and 200 <= int(width) <= 20000 and 200 <= int(height) <= 20000):
+        raise argparse.ArgumentTypeError(f"'{text}' is no size. Accepted: WIDTHxHEIGHT, 200 to 20000 each")
+    return int(width), int(height)
+
+
+def _version() -> str:
+    from importlib.metadata import PackageNotFoundError, version
+
+    try:
+        return f"luffmark {version('luffmark')}"
+    except PackageNotFoundError:
+        return "luffmark (not installed)"
+
+
+if __name__ == "__main__":
+    sys.exit(main())

@@ -1,0 +1,140 @@
+"""What every command needs: the store, who, now, and how to answer."""
+
+from __future__ import annotations
+
+import argparse
+import getpass
+import json
+import os
+import sys
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+from app.clock import real_now
+from app.formats import plain
+from core.record.instant import Instant
+
+if TYPE_CHECKING:
+    from app.words import Reader
+    from storage.store import Store
+
+STORE_NAME = "ward.luffmark"
+
+
+@dataclass(frozen=True, slots=True)
+class Context:
+    """The options that stand everywhere. `store_given` is False where the default path is meant."""
+
+    store_path: Path
+    store_given: bool
+    by: str
+    passphrase_fd: int | None
+    json: bool
+    gas_unit: str
+    zone: str
+
+    @classmethod
+    def of(cls, args: argparse.Namespace) -> Context:
+        """The context of parsed arguments."""
+        given = getattr(args, "store", None)
+        return cls(
+            given or default_store(), given is not None, getattr(args, "by", None) or _login(),
+            getattr(args, "passphrase_fd", None), getattr(args, "json", False),
+            getattr(args, "gas_unit", None) or "mmHg", getattr(args, "zone", None) or "",
+        )  # fmt: skip
+
+    def now(self) -> Instant:
+        """The computer's clock."""
+        return real_now()
+
+    def local_zone(self) -> str:
+        """The zone of wall-clock times: as asked for, else this computer's.
+
+        Raises:
+            RecordError: `row.unknown_zone`.
+        """
+        from app.local_zone import is_zone, local_zone
+        from core.record.message import refuse
+
+        if not self.zone:
+            return local_zone()
+        if not is_zone(self.zone):
+            raise refuse("row.unknown_zone", value=self.zone, accepted="a time zone, e.g. Europe/Oslo")
+        return self.zone
+
+    def reader(self) -> Reader:
+        """For whom sentences are written."""
+        from app.words import Reader
+
+        return Reader(self.local_zone(), self.gas_unit)
+
+    def passphrase(self) -> str | None:
+        """The passphrase from its descriptor, its line end taken off; None where none was given."""
+        if self.passphrase_fd is None:
+            return None
+        with os.fdopen(os.dup(self.passphrase_fd), "r", encoding="utf-8") as stream:
+            return stream.readline().rstrip("\r\n")
+
+    def open(self, *, read_only: bool = False) -> Store:
+        """The store, opened. What a person should know of how it opened goes to stderr."""
+        from app.words import sentence
+        from storage.store import Store
+
+        store = Store.open(self.store_path, passphrase=self.passphrase(), read_only=read_only)
+        for notice in store.notices:
+            remark(sentence(notice))
+        return store
+
+    def open_or_create(self, *, imported: bool = False) -> Store:
+        """The store, made first where there is none; a new encrypted one tells its recovery code once."""
+        from storage.store import Store
+
+        if self.store_path.exists():
+            return self.open()
+        self.store_path.parent.mkdir(parents=True, exist_ok=True)
+        store = Store.create(self.store_path, passphrase=self.passphrase(), now=self.now(), by=self.by,
+                             imported=imported)  # fmt: skip
+        remark(f"New store: {self.store_path}")
+        if store.recovery_code:
+            remark(f"Recovery code, shown once, keep it safe: {store.recovery_code}")
+        return store
+
+    def answer(self, text: str, value: Any) -> None:
+        """Print the answer: the text, or the value as JSON where JSON was asked for."""
+        if self.json:
+            json.dump(value, sys.stdout, ensure_ascii=False, indent=2, allow_nan=False)
+            sys.stdout.write("\n")
+        else:
+            print(plain(text))
+
+
+def default_store() -> Path:
+    """Where the user's store lies unless another is named."""
+    from platformdirs import user_data_path
+
+    return user_data_path("luffmark", appauthor=False) / STORE_NAME
+
+
+def remark(text: str) -> None:
+    """A line on stderr that is no refusal."""
+    print(plain(text), file=sys.stderr)
+
+
+def refused(error: BaseException) -> int:
+    """Say on one line why it was refused; exit code 1."""
+    from app.failure import failure_of
+    from app.words import sentence
+
+    failure = failure_of(error)
+    print(f"luffmark: {plain(sentence(failure.message))}", file=sys.stderr)
+    if failure.is_ours and os.environ.get("LUFFMARK_TRACE"):
+        print(failure.trace, file=sys.stderr)
+    return 1
+
+
+def _login() -> str:
+    try:
+        return getpass.getuser()
+    except (KeyError, OSError):
+        return ""

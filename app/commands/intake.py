@@ -1,0 +1,89 @@
+"""`luffmark intake FILE...`: log files into the store, each whole or not at all."""
+
+from __future__ import annotations
+
+import argparse
+import sys
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+from app.commands.context import Context
+from app.formats import plain
+from app.operations import intake as operations
+from app.words import Reader, sentence
+
+if TYPE_CHECKING:
+    from storage.intake.findings import Doubt, Intake, Refusal
+    from storage.store import Store
+
+_DOUBTS_SHOWN = 20
+
+
+def run(context: Context, args: argparse.Namespace) -> int:
+    """Take the files in order. A refused file ends it: the ones before it stay taken."""
+    _check_there(args.files)
+    reader = context.reader()
+    taken: list[dict[str, Any]] = []
+    with context.open_or_create(imported=args.keep_recording_times) as store:
+        for path in args.files:
+            intake = operations.read(store, context.by, context.now(), path).value
+            if intake.refusals or not intake.whole:
+                _tell_refused(path, intake, reader)
+                if context.json:
+                    context.answer("", {"taken": taken, "refused": _refused_json(path, intake, reader)})
+                return 1
+            taken.append(_take(context, store, path, intake, reader))
+    context.answer("\n".join(t.pop("text") for t in taken), {"taken": taken})
+    return 0
+
+
+def _check_there(files: list[Path]) -> None:
+    """A missing file is told before anything is taken, or a store made."""
+    for path in files:
+        with path.open("rb"):
+            pass
+
+
+def _take(context: Context, store: Store, path: Path, intake: Intake, reader: Reader) -> dict[str, Any]:
+    made = operations.take(store, context.by, context.now(), operations.TakeRequest(intake)).value
+    text = (
+        f"{path}: {made.entries:,} entries and {made.samples:,} device samples taken, "
+        f"{made.repeated:,} were in the store already; {len(made.episodes)} episode(s)."
+    )
+    if made.doubtful:
+        text += f"\n  {made.doubtful} doubtful row(s), taken and marked:"
+        text += "".join(f"\n    {_row(d, reader)}" for d in intake.doubts[:_DOUBTS_SHOWN])
+        if made.doubtful > _DOUBTS_SHOWN:
+            text += f"\n    ... and {made.doubtful - _DOUBTS_SHOWN} more (see --json)"
+    return {
+        "text": text, "file": str(path), "entries": made.entries, "samples": made.samples,
+        "repeated": made.repeated, "episodes": list(made.episodes),
+        "doubts": [_row_json(d, reader) for d in intake.doubts],
+    }  # fmt: skip
+
+
+def _tell_refused(path: Path, intake: Intake, reader: Reader) -> None:
+    """One clear line, then every bad row."""
+    print(f"luffmark: {path} was not taken: {intake.refused_rows} row(s) refused; the store is untouched.",
+          file=sys.stderr)  # fmt: skip
+    for refusal in intake.refusals:
+        print(f"  {_row(refusal, reader)}", file=sys.stderr)
+    hidden = intake.refused_rows - len({r.line for r in intake.refusals})
+    if hidden > 0:
+        print(f"  ... and {hidden} more row(s)", file=sys.stderr)
+
+
+def _row(found: Refusal | Doubt, reader: Reader) -> str:
+    where = f"line {found.line}" + (f", {found.column}" if found.column else "")
+    value = f" '{found.value}'" if found.value else ""
+    return plain(f"{where}{value}: {sentence(found.message, reader)}")
+
+
+def _row_json(found: Refusal | Doubt, reader: Reader) -> dict[str, Any]:
+    return {"line": found.line, "column": found.column, "value": found.value, "key": found.message.key,
+            "values": dict(found.message.values), "text": sentence(found.message, reader)}  # fmt: skip
+
+
+def _refused_json(path: Path, intake: Intake, reader: Reader) -> dict[str, Any]:
+    return {"file": str(path), "rows": intake.refused_rows, "whole": intake.whole,
+            "refusals": [_row_json(r, reader) for r in intake.refusals]}  # fmt: skip
