@@ -11,6 +11,7 @@ from sample_data.case import Case
 from sample_data.device import port_flow, shown_tidal_ml
 from sample_data.dice import Dice
 from sample_data.gas_exchange import hco3_of
+from sample_data.oxygen import alveolar_po2
 from sample_data.saturation import Values
 from sample_data.script import Act, Inputs, Setting
 from sample_data.simulation import Trajectory
@@ -21,6 +22,7 @@ PH_PER_PACO2, PH_ANALYSER_SD = 0.36, 0.005
 PAO2_CV = 0.05
 """What a repeat gas varies by without any change: SD of pH 0.012, of PaCO2 3 %, of PaO2 5 % (Thorson, Chest
 1983;84:14, six gases in 50 min). pH and PaCO2 vary together, so that bicarbonate stays nearly still."""
+LEAST_GRADIENT = 4.0
 DEVICE = "device"
 EVERY_MIN = {"leak": 1, "vte": 1, "rr_total": 1, "spo2": 1, "mv": 5, "pip": 5, "spont_percent": 5, "hr": 5}
 UNITS = {
@@ -80,6 +82,8 @@ def _gas(
     paco2 = paco2_true * (1.0 + drift)
     ph = round(float(true.ph[at]) - PH_PER_PACO2 * drift + dice.about(0, PH_ANALYSER_SD, -0.015, 0.015), 2)
     pao2 = pao2_true * (1.0 + dice.about(0, PAO2_CV, -0.15, 0.15))
+    # However it varies, blood holds less oxygen than the lung it comes from.
+    pao2 = min(pao2, float(alveolar_po2(true.fio2[at], np.array(paco2))) - LEAST_GRADIENT)
     sao2 = 100 * float(true.saturation[at]) + dice.about(0, 0.5, -1.5, 1.5)
     capillary = wanted["site"] == "capillary"
     if capillary:

@@ -217,7 +217,7 @@ def already_running(seed: int, last: int) -> Case:
         copd_patient(d), age=round(d.about(47, 9, 28, 68)), weight=weight, usual=d.about(48, 2, 44, 52),
         paco2=d.about(66, 3, 60, 72), ph=d.about(7.30, 0.01, 7.28, 7.325), rr=d.about(27, 2, 24, 31),
         tidal_ml=d.about(250, 15, 220, 290), vco2=110.0 + weight, compliance=d.about(0.045, 0.004, 0.036, 0.055),
-        resistance=d.about(5, 1, 3, 8), unload=0.6, matched=0.3, fio2=0.21, spo2=d.about(92.5, 0.7, 91, 94),
+        resistance=d.about(5, 1, 3, 8), unload=0.6, matched=0.3, fio2=0.21, spo2=d.about(89.5, 0.7, 88, 91),
         fixed_dead_l=0.07, tires=0.05, course_h=20.0, temp=36.8, hr=d.about(92, 6, 80, 106), recruitable=0.3,
     )  # fmt: skip
     s = opened(

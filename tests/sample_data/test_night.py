@@ -109,6 +109,27 @@ def test_gases_agree_with_themselves(rows: list[dict[str, str]]) -> None:
         assert gas["hco3"] == pytest.approx(expected, abs=1.0)
 
 
+def test_no_lung_gives_blood_more_oxygen_than_it_holds(rows: list[dict[str, str]]) -> None:
+    """Alveolar gas equation, R 0.8: a gas on a known FiO2 has a gradient above zero."""
+    known: dict[str, float] = {}
+    checked = 0
+    typed = [r for r in rows if r["file"] == "notes.csv"]
+    gases = {
+        (r["episode"], r["at"]): float(r["value"])
+        for r in typed
+        if r["channel"] == "pao2" and r["unit"] != "kPa"
+    }
+    for row in sorted(typed, key=lambda r: r["at"]):
+        if row["channel"] in ("fio2", "o2_flow"):
+            known[row["episode"]] = float(row["value"]) / 100 if row["channel"] == "fio2" else math.nan
+        if row["channel"] == "paco2" and (row["episode"], row["at"]) in gases:
+            fio2 = known[row["episode"]]
+            if not math.isnan(fio2):
+                assert fio2 * 713 - float(row["value"]) / 0.8 > gases[row["episode"], row["at"]]
+                checked += 1
+    assert checked > 35
+
+
 def test_ipap_is_above_epap_whenever_both_are_set(rows: list[dict[str, str]]) -> None:
     now: dict[str, dict[str, float]] = defaultdict(dict)
     typed = [r for r in rows if r["channel"] in ("ipap", "epap")]
