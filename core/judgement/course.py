@@ -2,7 +2,8 @@
 
 Between two gases the value is interpolated and the band is a Brownian bridge: at a share f of the way, over T hours,
 variance = (1-f)^2 r1 + f^2 r2 + q T f (1-f), with r the noise of one gas (the policy's noise / 2.77) and q the
-process variance per hour. Beyond the last gas there is no value, only a band that widens by q per hour. Nothing is
+process variance per hour. Beyond the last gas there is no value, only a band that widens by
+another q per hour (nothing holds it). Nothing is
 said before the first gas after a change, nor across a change, a break or a change of oxygen.
 
 q is fitted on the training seeds of the simulation by `python -m tests.support.fit_course`; held-out seeds test it.
@@ -28,9 +29,13 @@ from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 from core.record.samples import Times, Values
 
-PH_PROCESS_VARIANCE_PER_H: Final = 4.0e-4
-PACO2_PROCESS_VARIANCE_PER_H: Final = 16.0
-"""mmHg^2 per hour. Both fitted on simulated episodes; see above."""
+PH_PROCESS_VARIANCE_PER_H: Final = 8.0e-5
+PACO2_PROCESS_VARIANCE_PER_H: Final = 2.0
+"""Between two gases; per hour, PaCO2 in mmHg^2."""
+PH_DRIFT_VARIANCE_PER_H: Final = 6.0e-4
+PACO2_DRIFT_VARIANCE_PER_H: Final = 52.0
+"""Beyond a gas nothing holds the course to a value: the worst kind of episode sets it, lest the band reassure.
+All four are fitted on simulated episodes; see above."""
 BAND_Z: Final = 1.6449
 """90 % of a normal distribution."""
 TWO_GASES: Final = 2.772
@@ -85,9 +90,10 @@ def _value(ctx: Context, at: Instant, own: tuple[GasFigure, ...], until: Instant
         return CourseValue(basis=Message("course.changed", {"changed_at": until}))
     if not own:
         return CourseValue(basis=Message("course.no_gas"))
-    ph = _one(at, [(g.at, g.ph) for g in own if g.ph is not None], _ph_variance, PH_PROCESS_VARIANCE_PER_H, ctx.policy)
-    co2 = _one(at, [(g.at, g.paco2_mmHg) for g in own if g.paco2_mmHg is not None], _co2_variance,
-               PACO2_PROCESS_VARIANCE_PER_H, ctx.policy)  # fmt: skip
+    phs = [(g.at, g.ph) for g in own if g.ph is not None]
+    paco2s = [(g.at, g.paco2_mmHg) for g in own if g.paco2_mmHg is not None]
+    ph = _one(at, phs, _PH, ctx.policy)
+    co2 = _one(at, paco2s, _PACO2, ctx.policy)
     return CourseValue(*ph, *co2, basis=_basis(at, own))
 
 
@@ -104,7 +110,17 @@ def _basis(at: Instant, own: tuple[GasFigure, ...]) -> Message:
 
 
 _Triple = tuple[float | None, float | None, float | None]
-_Noise = Callable[[Policy, float], float]
+
+
+@dataclass(frozen=True, slots=True)
+class _Quantity:
+    """How one quantity varies: the variance of one gas, and the process variances between gases and beyond."""
+
+    noise: Callable[[Policy, float], float]
+    between: float
+    beyond: float
+
+
 
 
 def _ph_variance(policy: Policy, _value: float) -> float:
@@ -115,21 +131,24 @@ def _co2_variance(policy: Policy, value: float) -> float:
     return float((paco2_noise(policy.noise, value) / TWO_GASES) ** 2)
 
 
-def _one(
-    at: Instant, known: list[tuple[Instant, float]], noise: _Noise, q: float, policy: Policy
-) -> _Triple:
+_PH = _Quantity(_ph_variance, PH_PROCESS_VARIANCE_PER_H, PH_DRIFT_VARIANCE_PER_H)
+_PACO2 = _Quantity(_co2_variance, PACO2_PROCESS_VARIANCE_PER_H, PACO2_DRIFT_VARIANCE_PER_H)
+
+
+def _one(at: Instant, known: list[tuple[Instant, float]], how: _Quantity, policy: Policy) -> _Triple:
     """Value, low and high of one quantity; no value beyond the last gas, nothing before the first."""
     i = bisect_right(known, at, key=lambda row: row[0])
     if i == 0:
         return None, None, None
     t0, v0 = known[i - 1]
     if i == len(known) or t0 == at:
-        half = BAND_Z * sqrt(noise(policy, v0) + q * (at - t0) / HOUR)
+        half = BAND_Z * sqrt(how.noise(policy, v0) + how.beyond * (at - t0) / HOUR)
         return v0 if t0 == at else None, v0 - half, v0 + half
     t1, v1 = known[i]
     f = (at - t0) / (t1 - t0)
-    variance = (1 - f) ** 2 * noise(policy, v0) + f**2 * noise(policy, v1) + q * (t1 - t0) / HOUR * f * (1 - f)
-    value, half = v0 + f * (v1 - v0), BAND_Z * sqrt(variance)
+    bridge = how.between * (t1 - t0) / HOUR * f * (1 - f)
+    half = BAND_Z * sqrt((1 - f) ** 2 * how.noise(policy, v0) + f**2 * how.noise(policy, v1) + bridge)
+    value = v0 + f * (v1 - v0)
     return value, value - half, value + half
 
 
@@ -153,16 +172,12 @@ def course_band(ctx: Context, quantity: str, every_min: int = 5) -> Band:
     """
     if quantity not in ("ph", "paco2"):
         raise ValueError(f"no course of {quantity}: accepted are ph and paco2")
-    noise, q = (
-        (_ph_variance, PH_PROCESS_VARIANCE_PER_H)
-        if quantity == "ph"
-        else (_co2_variance, PACO2_PROCESS_VARIANCE_PER_H)
-    )
+    how = _PH if quantity == "ph" else _PACO2
     rows: list[tuple[int, float, float, float, int]] = []
     for number, (known, end) in enumerate(_stretches(ctx, quantity)):
         moments = sorted({*range(known[0][0], end + 1, every_min * MINUTE), *(t for t, _ in known), end})
         for at in moments:
-            value, low, high = _one(at, known, noise, q, ctx.policy)
+            value, low, high = _one(at, known, how, ctx.policy)
             if low is not None and high is not None:
                 rows.append((at, np.nan if value is None else value, low, high, number))
     t, value_column, low_column, high_column, segment = (
