@@ -8,10 +8,11 @@ from __future__ import annotations
 
 import json
 import tomllib
+from collections.abc import Mapping
 from dataclasses import asdict, dataclass, replace
 from typing import Any, Final
 
-from core.record.channels import CHANNELS, Group, Kind
+from core.record.channels import CHANNELS, HYPOXAEMIC, Group, Kind
 from core.record.message import refuse
 
 COMPUTED: Final = {"pf": "mmHg", "pressure_support": "cmH2O", "hco3_calculated": "mmol/L", "sbe": "mmol/L"}
@@ -146,15 +147,20 @@ class PanelSet:
         return next(k for n in range(1, MOST_PANELS * 4) if (k := f"own-{n}") not in taken)
 
 
-def shipped(titles: tuple[str, str, str, str]) -> PanelSet:
-    """The panels a new store begins with; the titles come in the reader's language."""
-    gas, oxygen, breathing, leak = titles
-    return PanelSet((
-        Panel("gas", gas, ("ph", "paco2"), 1.5),
-        Panel("oxygen", oxygen, ("spo2", "pf")),
-        Panel("breathing", breathing, ("rr", "rr_total")),
-        Panel("leak", leak, ("leak", "vte")),
-    ))  # fmt: skip
+def family_of(indication: str | None) -> str:
+    """Which kind of panels an indication begins with: one for failure of oxygen, one for all others."""
+    return "hypoxaemic" if indication in HYPOXAEMIC else "usual"
+
+
+def shipped(family: str, titles: Mapping[str, str]) -> PanelSet:
+    """The panels a family begins with; `titles` in the reader's language by key
+    (gas, oxygen, breathing, both, leak)."""
+    gas = Panel("gas", titles["gas"], ("ph", "paco2"), 1.4)
+    leak = Panel("leak", titles["leak"], ("leak", "vte"))
+    if family == "hypoxaemic":
+        oxygen = Panel("oxygen", titles["oxygen"], ("spo2", "pf"), 1.4)
+        return PanelSet((oxygen, Panel("breathing", titles["breathing"], ("rr", "rr_total", "vte")), replace(gas, height=1.0)))
+    return PanelSet((gas, Panel("breathing", titles["both"], ("spo2", "rr", "rr_total")), leak))
 
 
 def to_json(panels: PanelSet) -> str:

@@ -22,6 +22,10 @@ QLabel[role="display"] {{ font-size: {display}px; font-weight: 600; }}
 QLabel[role="title"] {{ font-size: {title}px; font-weight: 600; }}
 QLabel[role="emphasis"] {{ font-size: {emphasis}px; font-weight: 600; }}
 QLabel[role="strong"] {{ font-weight: 600; }}
+QLabel[pill="true"] {{
+    background: {wash}; border: 1px solid {accent}; border-radius: {radius}px; padding: {g1}px {g2}px;
+    font-weight: 600;
+}}
 QFrame[fact="true"] {{ background: transparent; border: 2px solid transparent; border-radius: {radius}px; }}
 QFrame[fact="true"]:hover {{ background: {wash}; }}
 QFrame[fact="true"]:focus {{ border-color: {accent}; background: {wash}; }}

@@ -1,0 +1,96 @@
+"""What stood at the crosshair: the moment, the settings in force, every panel's value and how old it is."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from html import escape
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QFrame, QLabel, QSizePolicy, QVBoxLayout
+
+from app.chart.shapes import Look, Reading, RibbonStep
+from app.course import Stretch
+from app.formats import fixed, minutes, wall
+from app.phrases import settings_line
+from app.theme import Theme
+from core.record.instant import MINUTE, Instant
+
+FRESH = 2 * MINUTE
+"""A value younger than this is told without its age."""
+
+
+class Readout(QFrame):
+    """Two lines that never move anything: moment and settings, then values with their ages."""
+
+    def __init__(self, theme: Theme) -> None:
+        super().__init__()
+        self._theme = theme
+        self._settings, self._values = QLabel(), QLabel()
+        for label in (self._settings, self._values):
+            label.setTextFormat(Qt.TextFormat.RichText)
+            label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
+        self._values.setWordWrap(True)
+        self._values.setAlignment(Qt.AlignmentFlag.AlignTop)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(2)
+        column.addWidget(self._settings)
+        column.addWidget(self._values)
+        self.setAccessibleName(self.tr("Values at the crosshair"))
+        self.set_theme(theme)
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size."""
+        self._theme = theme
+        line = round(theme.px(theme.type.body) * 1.45)
+        self._settings.setFixedHeight(line)
+        self._values.setFixedHeight(2 * line)
+
+    def show_moment(
+        self, at: Instant, zone: str, step: RibbonStep | None, readings: Iterable[Reading], *, pointed: bool
+    ) -> None:
+        """Say what stood at a moment; `pointed`: the crosshair is there, else it is now."""
+        head = wall(at, zone) if pointed else self.tr("Now, {time}").format(time=wall(at, zone))
+        stretch = step.payload if step is not None else None
+        settings = settings_line(stretch.settings) if isinstance(stretch, Stretch) else self.tr("no settings in force")
+        age = ""
+        if isinstance(stretch, Stretch):
+            age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))
+        quiet = self._theme.colours.ink_quiet
+        self._settings.setText(f"<b>{escape(head)}</b> &nbsp; {escape(settings)} <span style='color:{quiet}'>{escape(age)}</span>")
+        parts = [self._value(r, at) for r in _once(readings)]
+        self._values.setText(" &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment")))
+        self._values.setAccessibleName(self.plain())
+
+    def plain(self) -> str:
+        """Both lines in plain words."""
+        from PySide6.QtGui import QTextDocumentFragment
+
+        texts = (self._settings.text(), self._values.text())
+        return "\n".join(QTextDocumentFragment.fromHtml(t).toPlainText() for t in texts)
+
+    def _value(self, r: Reading, at: Instant) -> str:
+        quiet = self._theme.colours.ink_quiet
+        unit = "" if r.unit == "pH" else f"&nbsp;{escape(r.unit).replace('/', '/&#8288;')}"
+        name = escape(r.name).replace(" ", "&nbsp;")
+        text = f"<span style='color:{quiet}'>{name}</span>&nbsp;<b>{fixed(r.value, r.decimals)}</b>{unit}"
+        told = [self._look_word(r)] if self._look_word(r) else []
+        if at - r.at >= FRESH:
+            told.append(self.tr("{age} old").format(age=minutes((at - r.at) / MINUTE)))
+        if told:
+            words = escape(", ".join(told)).replace(" ", "&nbsp;")
+            text += f"&nbsp;<span style='color:{quiet}'>({words})</span>"
+        return text
+
+    def _look_word(self, r: Reading) -> str:
+        words = {
+            Look.DOUBTFUL: self.tr("doubtful"),
+            Look.CORRECTED: self.tr("corrected"),
+            Look.DISPUTED: self.tr("disputed"),
+        }
+        return r.doubt or words.get(r.look, "")
+
+
+def _once(readings: Iterable[Reading]) -> list[Reading]:
+    """Each trace once, though several panels may hold it."""
+    return list({r.key: r for r in readings if r.value == r.value}.values())

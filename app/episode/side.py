@@ -1,0 +1,234 @@
+"""Beside the panels: the state now, flags with evidence and source, due items, scores, levers."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
+
+from app.explain import Explainer, Explanation, sure_words
+from app.fact import Fact, heading
+from app.finding_names import due_name, lever_name, marker_name
+from app.formats import clock, fixed, gas_pressure, hours, minutes, since, trimmed
+from app.phrases import gas_words, state_of, support_now, translate
+from app.signs import Sign
+from app.theme import Theme, Tier, state_word, tier_word, verdict_of, verdict_word
+from app.ward.lane_words import anchor_name, open_flags
+from app.ward.ordering import OPEN_DUE
+from app.words import Reader, sentence
+from core.judgement.policy import Policy
+from core.judgement.shapes import EpisodeFigures, FlagFigure, ResponseFigure, ScoreFigure
+from core.record.instant import MINUTE
+
+SCORE_NAMES = {"hacor": "HACOR", "hacor_updated": "HACOR 2022", "news2": "NEWS2", "rox": "ROX"}
+
+
+class SideColumn(QScrollArea):
+    """Draws the figures of one episode as facts in groups."""
+
+    explain_wanted = Signal(object)
+
+    def __init__(self, theme: Theme) -> None:
+        super().__init__()
+        self._theme = theme
+        self.setWidgetResizable(True)
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.setAccessibleName(self.tr("State, flags, due items and levers"))
+        self.set_theme(theme)
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size; the next figures are drawn in it."""
+        self._theme = theme
+        self.setFixedWidth(theme.px(332))
+
+    def facts(self) -> list[Fact]:
+        """All facts from top to bottom."""
+        return self.widget().findChildren(Fact) if self.widget() is not None else []
+
+    def show_figures(self, figures: EpisodeFigures, policy: Policy, reader: Reader) -> None:
+        """Draw the figures anew, keeping the place that was scrolled to."""
+        place = self.verticalScrollBar().value()
+        maker = _Facts(self._theme, figures, Explainer(policy, reader), reader)
+        inside = QWidget()
+        column = QVBoxLayout(inside)
+        px = self._theme.px
+        column.setContentsMargins(0, 0, px(8), px(8))
+        column.setSpacing(px(4))
+        for title, facts in maker.groups():
+            card = QFrame()
+            card.setProperty("card", True)
+            rows = QVBoxLayout(card)
+            rows.setContentsMargins(px(6), px(8), px(6), px(6))
+            rows.setSpacing(0)
+            label = heading(title)
+            label.setContentsMargins(px(8), 0, px(8), 0)
+            rows.addWidget(label)
+            for fact in facts:
+                fact.explain_wanted.connect(self.explain_wanted)
+                rows.addWidget(fact)
+            column.addWidget(card)
+        column.addStretch(1)
+        self.setWidget(inside)
+        self.verticalScrollBar().setValue(place)
+
+
+class _Facts:
+    """Makes the facts of an episode, group by group."""
+
+    def __init__(self, theme: Theme, figures: EpisodeFigures, explainer: Explainer, reader: Reader) -> None:
+        self.theme, self.f, self.explainer, self.reader = theme, figures, explainer, reader
+
+    def groups(self) -> Iterator[tuple[str, Sequence[Fact]]]:
+        """(heading, facts) from top to bottom; a group without facts is left out, flags and due never are."""
+        yield translate("side", "Now"), tuple(self._now())
+        yield translate("side", "Flags"), tuple(self._flags()) or (self._quiet(translate("side", "No open flag")),)
+        yield translate("side", "Due"), tuple(self._due()) or (self._quiet(translate("side", "Nothing due")),)
+        levers = tuple(self._levers())
+        if levers:
+            yield translate("side", "What could act"), levers
+        scores = tuple(self._scores())
+        if scores:
+            yield translate("side", "Scores and ratios"), scores
+
+    def _quiet(self, text: str) -> Fact:
+        return Fact(self.theme, text, quiet=True)
+
+    # now
+
+    def _now(self) -> Iterator[Fact]:
+        f, zone = self.f, self.reader.zone
+        gas = next((g for g in reversed(f.gases) if g.site != "venous"), None)
+        if gas is None:
+            yield self._quiet(translate("side", "No gas yet"))
+        else:
+            state = state_of(gas.state)
+            age = since(gas.at, f.as_of)
+            yield Fact(self.theme, f"{state_word(state)}", (gas_words(gas, self.reader.gas_unit), f"{clock(gas.at, zone)}, {age}"),
+                       sign=Sign(self.theme, state), explanation=self.explainer.gas(gas))  # fmt: skip
+        response = self._telling()
+        if response is not None:
+            yield self._verdict(response)
+        yield Fact(self.theme, self._support(), tuple(self._mask_time()))
+
+    def _telling(self) -> ResponseFigure | None:
+        told = [r for r in self.f.responses if r.headline_gas_at is not None]
+        if told:
+            return max(told, key=lambda r: (r.headline_gas_at or 0, r.anchor_at))
+        return self.f.responses[-1] if self.f.responses else None
+
+    def _verdict(self, response: ResponseFigure) -> Fact:
+        verdict = verdict_of(response.headline)
+        lines = [translate("side", "after {anchor} at {time}").format(
+            anchor=anchor_name(response), time=clock(response.anchor_at, self.reader.zone))]  # fmt: skip
+        latest = next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)
+        if latest is not None and latest.since_start.verdict is not None:
+            against = verdict_word(verdict_of(latest.since_start.verdict))
+            text = translate("side", "since the start: {verdict}").format(verdict=against)
+            lines.append(text + (translate("side", ", gain lost") if latest.since_start.gain_lost else ""))
+        lines += [sentence(m, self.reader) for m in response.why[:1]]
+        return Fact(self.theme, verdict_word(verdict), lines, sign=Sign(self.theme, verdict),
+                    explanation=self.explainer.response(response))  # fmt: skip
+
+    def _support(self) -> str:
+        s = self.f.support
+        if s.ended_at is not None:
+            return translate("side", "Support ended {time}").format(time=clock(s.ended_at, self.reader.zone))
+        text = support_now(s.mode, s.ipap_cmH2O, s.epap_cmH2O, s.fio2, s.o2_flow_L_per_min)
+        if s.fio2 is None and s.o2_flow_L_per_min is not None:
+            text += translate("side", ", FiO2 not known")
+        return text or translate("side", "No support recorded")
+
+    def _mask_time(self) -> Iterator[str]:
+        s = self.f.support
+        if s.pressure_support_cmH2O is not None and s.ipap_cmH2O is not None:
+            yield translate("side", "pressure support {ps} cmH2O").format(ps=trimmed(s.pressure_support_cmH2O))
+        if s.break_since is not None:
+            yield translate("side", "off the mask since {time}").format(time=clock(s.break_since, self.reader.zone))
+        if s.hours_on_mask is not None:
+            text = translate("side", "{hours} on the mask").format(hours=hours(s.hours_on_mask))
+            if s.hours_on_mask_last_24h is not None and s.hours_on_mask > s.hours_on_mask_last_24h + 0.05:
+                text += translate("side", ", {hours} in the last 24 h").format(hours=hours(s.hours_on_mask_last_24h))
+            yield text
+
+    # flags
+
+    def _flags(self) -> Iterator[Fact]:
+        for flag in open_flags(self.f):
+            under = [g for g in self.f.flags if g.group == flag.group and g is not flag and g.state in ("raised", "seen")]
+            folded = [f"{marker_name(g.marker, self.reader)} ({tier_word(Tier(g.tier))}). {self._evidence(g)}" for g in under]
+            word = translate("side", "{count} more of this kind").format(count=len(under))
+            lines = [self._evidence(flag), self._source(flag)]
+            if flag.seen_by:
+                lines.append(translate("side", "seen by {who}").format(who=flag.seen_by))
+            yield Fact(self.theme, f"{marker_name(flag.marker, self.reader)}", [x for x in lines if x],
+                       sign=Sign(self.theme, Tier(flag.tier), quiet=flag.state == "seen"),
+                       explanation=self.explainer.flag(flag), folded=folded, fold_word=word)  # fmt: skip
+
+    def _evidence(self, flag: FlagFigure) -> str:
+        return " ".join(sentence(e, self.reader) for e in flag.evidence)
+
+    def _source(self, flag: FlagFigure) -> str:
+        return f"{tier_word(Tier(flag.tier))}. {flag.source} ({sure_words(flag.sure)})"
+
+    # due, levers
+
+    def _due(self) -> Iterator[Fact]:
+        items = [d for d in self.f.due if d.state in OPEN_DUE]
+        for d in sorted(items, key=lambda d: d.due_until):
+            name = due_name(d.what, self.reader)
+            if d.state == "overdue":
+                late = minutes((self.f.as_of - d.due_until) / MINUTE)
+                title = translate("side", "{what}: overdue {late}").format(what=name, late=late)
+            elif d.state == "awaiting result":
+                title = translate("side", "{what}: awaiting result").format(what=name)
+            else:
+                title = translate("side", "{what} by {time}").format(what=name, time=clock(d.due_until, self.reader.zone))
+            yield Fact(self.theme, title, (sentence(d.because, self.reader),), explanation=self.explainer.due(d),
+                       quiet=d.state == "open")  # fmt: skip
+
+    def _levers(self) -> Iterator[Fact]:
+        for lever in (x for x in self.f.levers if x.can_act):
+            lines = [sentence(m, self.reader) for m in (*lever.why, *lever.limits)]
+            yield Fact(self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever))
+        idle = [x for x in self.f.levers if not x.can_act]
+        if idle:
+            folded = [f"{lever_name(x.key, self.reader)}: {' '.join(sentence(m, self.reader) for m in x.why)}" for x in idle]
+            word = translate("side", "Enter tells why")
+            yield Fact(self.theme, translate("side", "{count} that cannot act now").format(count=len(idle)), folded=folded,
+                       fold_word=word, quiet=True)  # fmt: skip
+
+    # scores
+
+    def _scores(self) -> Iterator[Fact]:
+        for key, score in self.f.scores.items():
+            if score.enabled:
+                name = SCORE_NAMES.get(key, key)
+                yield Fact(self.theme, f"{name}: {self._points(score)}", tuple(self._score_lines(score)),
+                           explanation=self.explainer.score(name, score), quiet=True)  # fmt: skip
+        for name, ratio, decimals in (("P/F", self.f.pf, 0), ("S/F", self.f.sf, 0), ("ROX", self.f.rox, 1)):
+            if ratio.latest is not None and ratio.at is not None:
+                value = gas_pressure(ratio.latest, self.reader.gas_unit) if name == "P/F" else fixed(ratio.latest, decimals)
+                yield Fact(self.theme, f"{name}: {value}", (f"{clock(ratio.at, self.reader.zone)}, {since(ratio.at, self.f.as_of)}",),
+                           explanation=Explanation(name), quiet=True)  # fmt: skip
+
+    def _points(self, score: ScoreFigure) -> str:
+        if score.points is not None:
+            return trimmed(score.points)
+        if score.lowest is not None and score.highest is not None:
+            return translate("side", "between {low} and {high}").format(low=trimmed(score.lowest), high=trimmed(score.highest))
+        return translate("side", "not known")
+
+    def _score_lines(self, score: ScoreFigure) -> Iterator[str]:
+        if score.missing:
+            names = ", ".join(m.replace("_", " ") for m in score.missing)
+            yield translate("side", "missing: {names}").format(names=names)
+        if score.population == "outside":
+            yield translate("side", "outside its population")
+        if score.at is not None:
+            yield f"{clock(score.at, self.reader.zone)}, {since(score.at, self.f.as_of)}"
+        yield from (sentence(m, self.reader) for m in score.reasons.values())
+
+

@@ -1,0 +1,199 @@
+"""The episode view: pressure ribbon and panels on one clock; beside them state, flags, due items, levers."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QKeyEvent
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
+
+from app.chart.shapes import Bracket, Tick
+from app.chart.stack import PanelStack
+from app.episode.readout import Readout
+from app.episode.side import SideColumn
+from app.episode.stack_words import EpisodeOnScreen, stack_of
+from app.explain import Explainer
+from app.phrases import translate
+from app.theme import Theme
+from app.ward.lane_words import indication_word
+from app.words import Reader
+from core.judgement.shapes import ResponseFigure
+from core.record.instant import Instant
+
+
+class EpisodeView(QWidget):
+    """Draws an EpisodeOnScreen; sends intents and changes nothing."""
+
+    back = Signal()
+    """To the ward again."""
+    explain_wanted = Signal(object)
+    panels_wanted = Signal()
+
+    def __init__(self, theme: Theme) -> None:
+        super().__init__()
+        self._theme = theme
+        self._on: EpisodeOnScreen | None = None
+        self._now: Instant = 0
+        self.title = QLabel()
+        self.title.setProperty("role", "title")
+        self.about = QLabel()
+        self.about.setProperty("role", "quiet")
+        self.back_button = QPushButton(self.tr("Ward"))
+        self.back_button.setToolTip(self.tr("Back to the ward (Esc)"))
+        self.back_button.setAccessibleName(self.tr("Back to the ward"))
+        self.panels_button = QPushButton(self.tr("Panels..."))
+        self.panels_button.setAccessibleName(self.tr("Add, name, fill, order and remove panels"))
+        self.readout = Readout(theme)
+        self.stack = PanelStack(theme)
+        self.notice = QLabel()
+        self.notice.setProperty("role", "caption")
+        self.side = SideColumn(theme)
+        self._lay_out()
+        self._connect()
+
+    def _lay_out(self) -> None:
+        px = self._theme.px
+        head = QHBoxLayout()
+        head.setSpacing(px(12))
+        head.addWidget(self.back_button)
+        head.addWidget(self.title)
+        head.addWidget(self.about)
+        head.addStretch(1)
+        head.addWidget(self.notice)
+        head.addWidget(self.panels_button)
+        self.scroll = QScrollArea()
+        self.scroll.setWidgetResizable(True)
+        self.scroll.setFrameShape(QFrame.Shape.NoFrame)
+        self.scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.scroll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.scroll.setWidget(self.stack)
+        left = QVBoxLayout()
+        left.setSpacing(px(6))
+        left.addLayout(head)
+        left.addWidget(self.readout)
+        left.addWidget(self.scroll, 1)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(px(16), px(8), px(8), px(4))
+        row.setSpacing(px(12))
+        row.addLayout(left, 1)
+        row.addWidget(self.side)
+
+    def _connect(self) -> None:
+        self.back_button.clicked.connect(self._back)
+        self.panels_button.clicked.connect(self._want_panels)
+        self.stack.instant_changed.connect(self._pointed)
+        self.stack.reduced_changed.connect(self._reduced)
+        self.stack.bracket_activated.connect(self._bracket)
+        self.stack.tick_activated.connect(self._tick)
+        self.side.explain_wanted.connect(self.explain_wanted)
+
+    # what to show
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size; call `show_episode` again after it."""
+        self._theme = theme
+        self.readout.set_theme(theme)
+        self.side.set_theme(theme)
+        self.stack.set_theme(theme)
+        if self._on is not None:
+            self.show_episode(self._on, self._now)
+
+    def show_episode(self, on: EpisodeOnScreen, now: Instant) -> None:
+        """Show an episode; the same one with new values keeps its window and its crosshair."""
+        same = self._on is not None and self._on.figures.episode == on.figures.episode
+        old_spec, window, instant = self.stack.spec, self.stack.window, self.stack.instant
+        at_end = old_spec is not None and window[1] >= old_spec.end
+        self._on, self._now = on, now
+        self.stack.set_spec(stack_of(on, now))
+        if same and not at_end:
+            self.stack.set_window(*window)
+        if same and instant is not None:
+            self.stack.point_at(instant)
+        self.title.setText(on.figures.label)
+        self.about.setText(self._about(on))
+        self.side.show_figures(on.figures, on.policy, self._reader())
+        self._tell(self.stack.instant)
+
+    @property
+    def episode(self) -> str | None:
+        """The key of the episode shown."""
+        return None if self._on is None else self._on.figures.episode
+
+    @property
+    def on_screen(self) -> EpisodeOnScreen | None:
+        """What is shown."""
+        return self._on
+
+    def _reader(self) -> Reader:
+        assert self._on is not None
+        return Reader(self._on.zone, self._on.gas_unit)
+
+    def _about(self, on: EpisodeOnScreen) -> str:
+        facts = on.figures.profile
+        indication, age, place = facts.get("indication"), facts.get("age"), facts.get("location")
+        parts = [indication_word(str(indication))] if indication else [self.tr("indication not recorded")]
+        if isinstance(age, float):
+            parts.append(translate("episode", "{age:.0f} years").format(age=age))
+        if place:
+            parts.append(str(place))
+        ceiling = facts.get("ceiling_of_care")
+        parts.append(translate("episode", "ceiling: {ceiling}").format(ceiling=ceiling or translate("episode", "not recorded")))
+        return ", ".join(parts)
+
+    # the crosshair
+
+    def _pointed(self, instant: Instant | None) -> None:
+        self._tell(instant)
+
+    def _tell(self, instant: Instant | None) -> None:
+        if self._on is None:
+            return
+        at = self._on.course.until if instant is None else instant
+        self.readout.show_moment(at, self._on.zone, self.stack.settings_at(min(at, self._on.course.until - 1)),
+                                 self.stack.readings_at(at), pointed=instant is not None)  # fmt: skip
+
+    def go_to_anchor(self, step: int) -> None:
+        """Put the crosshair on the next (1) or previous (-1) anchor."""
+        if self._on is None:
+            return
+        anchors = sorted({r.anchor_at for r in self._on.figures.responses})
+        here = self.stack.instant if self.stack.instant is not None else self._on.course.until
+        later = [a for a in anchors if a > here] if step > 0 else [a for a in reversed(anchors) if a < here]
+        if later:
+            start, end = self.stack.window
+            if not start <= later[0] <= end:
+                self.stack.go_to(later[0])
+            self.stack.point_at(later[0])
+
+    # what the person does
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            if self.stack.instant is not None and self.stack.hasFocus():
+                self.stack.point_at(None)
+            else:
+                self.back.emit()
+            return
+        if event.key() in (Qt.Key.Key_PageUp, Qt.Key.Key_PageDown):
+            bar = self.scroll.verticalScrollBar()
+            sign = 1 if event.key() == Qt.Key.Key_PageDown else -1
+            bar.setValue(bar.value() + sign * bar.pageStep())
+            return
+        super().keyPressEvent(event)
+
+    def _back(self) -> None:
+        self.back.emit()
+
+    def _want_panels(self) -> None:
+        self.panels_wanted.emit()
+
+    def _reduced(self, reduced: bool) -> None:
+        spec = self.stack.spec
+        self.notice.setText(self.tr("lowest and highest per pixel") if reduced and spec is not None else "")
+        self.notice.setToolTip(spec.reduced_word if spec is not None else "")
+
+    def _bracket(self, bracket: Bracket) -> None:
+        if self._on is not None and isinstance(bracket.payload, ResponseFigure):
+            self.explain_wanted.emit(Explainer(self._on.policy, self._reader()).response(bracket.payload))
+
+    def _tick(self, tick: Tick) -> None:
+        self.stack.point_at(tick.at)

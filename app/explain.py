@@ -1,0 +1,207 @@
+"""Where a figure, marker or verdict comes from: formula, inputs with times, source, how sure. One key opens it.
+
+The texts name the policy's own limits with their sources, so that a changed policy explains itself.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from PySide6.QtCore import QCoreApplication
+
+from app.finding_names import due_name, lever_name, marker_name
+from app.formats import clock, fixed, fraction, gas_pressure, minutes, quantity, signed, trimmed, wall
+from app.phrases import gas_name, gas_words
+from app.theme import Tier, tier_word, verdict_of, verdict_word
+from app.words import Reader, sentence
+from core.judgement.policy import Policy
+from core.judgement.policy_sections import Limit
+from core.judgement.shapes import (
+    DueFigure,
+    FlagFigure,
+    GasFigure,
+    LeverFigure,
+    ResponseFigure,
+    ScoreFigure,
+)
+
+translate = QCoreApplication.translate
+
+
+@dataclass(frozen=True, slots=True)
+class Explanation:
+    """`inputs` are (name, value, when); `rules` and `notes` whole sentences."""
+
+    title: str
+    rules: tuple[str, ...] = ()
+    inputs: tuple[tuple[str, str, str], ...] = ()
+    notes: tuple[str, ...] = ()
+    source: str = ""
+    sure: str = ""
+
+    def as_text(self) -> str:
+        """All of it in plain words, to be copied."""
+        parts = [self.title, *self.rules]
+        parts += ["  ".join(p for p in row if p) for row in self.inputs]
+        parts += self.notes
+        if self.source:
+            parts.append(translate("explain", "Source: {source}").format(source=self.source))
+        if self.sure:
+            parts.append(translate("explain", "How sure: {sure}").format(sure=sure_words(self.sure)))
+        return "\n".join(parts)
+
+
+def sure_words(sure: str) -> str:
+    """How sure a number is, in words that cannot be misread."""
+    return {
+        "confirmed": translate("explain", "confirmed in the source's own text"),
+        "secondary": translate("explain", "from a secondary source"),
+        "from memory": translate("explain", "from memory: confirm locally before relying on it"),
+        "computed here": translate("explain", "computed here from a confirmed figure"),
+        "common practice": translate("explain", "common practice, no source found"),
+    }.get(sure, sure)
+
+
+@dataclass(frozen=True, slots=True)
+class Explainer:
+    """Explains figures by one policy, for one reader."""
+
+    policy: Policy
+    reader: Reader
+
+    def flag(self, flag: FlagFigure) -> Explanation:
+        """A flag: its evidence, the marker's limits, since when, who has seen it."""
+        zone = self.reader.zone
+        rule = self.policy.markers.get(flag.marker)
+        rules = []
+        if rule is not None and rule.limits:
+            told = ", ".join(f"{name.replace('_', ' ')} {value:g}" for name, value in rule.limits.items())
+            rules.append(translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told))
+        if rule is not None:
+            rules.append(translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " ")))
+        notes = [translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
+                 translate("explain", "Met since {time}.").format(time=wall(flag.since, zone))]  # fmt: skip
+        if flag.outside_population:
+            notes.append(translate("explain", "This patient is outside the population it was validated in."))
+        if flag.seen_by and flag.seen_at is not None:
+            notes.append(translate("explain", "Seen by {who}, {time}.").format(
+                who=flag.seen_by, time=wall(flag.seen_at, zone)))  # fmt: skip
+        if flag.settled_by and flag.settled_at is not None:
+            notes.append(translate("explain", "Settled by {who}, {time}: {why}").format(
+                who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or ""))  # fmt: skip
+        evidence = tuple(sentence(e, self.reader) for e in flag.evidence)
+        notes.append(translate("explain", "Policy {hash}.").format(hash=flag.policy[:16]))
+        return Explanation(marker_name(flag.marker, self.reader), (*evidence, *rules), (), tuple(notes),
+                           flag.source, flag.sure)  # fmt: skip
+
+    def response(self, response: ResponseFigure) -> Explanation:
+        """A verdict: the baseline, the gas, what was compared against which noise."""
+        zone, noise = self.reader.zone, self.policy.noise
+        inputs = []
+        if response.baseline_at is not None:
+            inputs.append((translate("explain", "Baseline gas"), self._values(
+                response.baseline_ph, response.baseline_paco2_mmHg), clock(response.baseline_at, zone)))  # fmt: skip
+        for g in response.gases:
+            told = [f"{minutes(g.minutes)}"]
+            if g.delta_ph is not None:
+                told.append(f"pH {signed(g.delta_ph, 2)}")
+            if g.delta_paco2_mmHg is not None:
+                told.append(f"PaCO2 {gas_pressure(g.delta_paco2_mmHg, self.reader.gas_unit, sign=True)}")
+            if g.verdict is not None:
+                told.append(verdict_word(verdict_of(g.verdict)))
+            inputs.append((translate("explain", "Gas judged"), ", ".join(told), clock(g.at, zone)))
+        why = [sentence(m, self.reader) for g in response.gases for m in g.why] \
+            + [sentence(m, self.reader) for m in response.why]
+        rules = (
+            translate("explain", "A gas 30 to 120 minutes after the change judges it against the last gas before it."),
+            translate("explain", "Beyond noise is: {limits}.").format(limits="; ".join((
+                self._limit("pH", noise.ph, fixed(noise.ph.value, 3)),
+                self._limit("PaCO2", noise.paco2_mmHg, gas_pressure(noise.paco2_mmHg.value, self.reader.gas_unit)),
+                self._limit("PaCO2", noise.paco2_fraction, fraction(noise.paco2_fraction.value)),
+                self._limit("P/F", noise.pao2_fraction, fraction(noise.pao2_fraction.value)),
+            ))),
+        )  # fmt: skip
+        title = translate("explain", "Verdict: {verdict}").format(verdict=verdict_word(verdict_of(response.headline)))
+        return Explanation(title, rules, tuple(inputs), tuple(dict.fromkeys(why)), noise.ph.source, noise.ph.sure)
+
+    def gas(self, gas: GasFigure) -> Explanation:
+        """A gas: what was reported, what was computed from it and how, why something is absent."""
+        state = self.policy.state
+        rules = (
+            translate("explain", "Severe: pH below {severe}. Acidotic: pH below {acidotic}.").format(
+                severe=fixed(state.severe_below_ph.value, 2), acidotic=fixed(state.acidotic_below_ph.value, 2)),
+            "P/F = PaO2 / FiO2",
+            "HCO3 = 0.0307 x PCO2 x 10^(pH - 6.1)",
+            "SBE = HCO3 - 24.8 + 16.2 x (pH - 7.40)",
+        )  # fmt: skip
+        when = clock(gas.at, self.reader.zone)
+        notes = [f"{key.partition('_')[0]}: {sentence(m, self.reader)}" for key, m in gas.reasons.items()]
+        notes += [sentence(m, self.reader) for m in gas.warnings]
+        return Explanation(f"{when} {gas_name(gas)}: {gas_words(gas, self.reader.gas_unit)}", rules,
+                           tuple(self._gas_inputs(gas, when)), tuple(notes),
+                           "Henderson-Hasselbalch; CLSI C46", "confirmed")  # fmt: skip
+
+    def score(self, name: str, score: ScoreFigure) -> Explanation:
+        """A score: each input with its value, its time and the points it gave; what is missing."""
+        inputs = []
+        for key, part in score.inputs.items():
+            value = translate("explain", "missing") if part.value is None else _plain(key, part.value)
+            points = "" if part.points is None else translate("explain", ", {points} points").format(
+                points=trimmed(part.points))  # fmt: skip
+            when = clock(part.at, self.reader.zone) if part.at is not None else ""
+            inputs.append((key.replace("_", " "), f"{value}{points}", when))
+        notes = [sentence(m, self.reader) for m in (score.caveat, *score.reasons.values()) if m is not None]
+        if score.missing:
+            notes.append(translate("explain", "Missing inputs are taken at their best and at their worst, never as normal."))
+        if score.population == "outside":
+            notes.append(translate("explain", "Outside the population it was validated in: shown, never a flag."))
+        return Explanation(name, (), tuple(inputs), tuple(notes))
+
+    def due(self, due: DueFigure) -> Explanation:
+        """A due item: why, from when, until when."""
+        zone = self.reader.zone
+        rule = self.policy.due.get(due.what)
+        span = translate("explain", "From {start} to {end}.").format(
+            start=wall(due.due_from, zone), end=wall(due.due_until, zone))  # fmt: skip
+        return Explanation(due_name(due.what, self.reader), (sentence(due.because, self.reader), span), (), (),
+                           rule.source if rule else "", rule.sure if rule else "")  # fmt: skip
+
+    def lever(self, lever: LeverFigure) -> Explanation:
+        """A lever: why it could act or not, and what limits it."""
+        texts = (*lever.why, *((lever.present,) if lever.present is not None else ()), *lever.limits)
+        note = translate("explain", "A qualified person decides.")
+        return Explanation(lever_name(lever.key, self.reader), tuple(sentence(m, self.reader) for m in texts), (), (note,))
+
+    def _values(self, ph: float | None, paco2: float | None) -> str:
+        parts = [f"pH {fixed(ph, 2)}"] if ph is not None else []
+        if paco2 is not None:
+            parts.append(f"PaCO2 {gas_pressure(paco2, self.reader.gas_unit)}")
+        return ", ".join(parts)
+
+    def _limit(self, name: str, limit: Limit, text: str) -> str:
+        return f"{name} {text} ({limit.source}; {limit.sure})"
+
+    def _gas_inputs(self, gas: GasFigure, when: str) -> Iterator[tuple[str, str, str]]:
+        unit = self.reader.gas_unit
+        rows = (
+            ("pH", gas.ph_text or (fixed(gas.ph, 2) if gas.ph is not None else None)),
+            ("PaCO2", gas.paco2_text or (gas_pressure(gas.paco2_mmHg, unit) if gas.paco2_mmHg is not None else None)),
+            ("PaO2", gas_pressure(gas.pao2_mmHg, unit) if gas.pao2_mmHg is not None else None),
+            ("FiO2", f"{fraction(gas.fio2)} ({gas.fio2_from})" if gas.fio2 is not None else None),
+            ("P/F", gas_pressure(gas.pf_mmHg, unit) if gas.pf_mmHg is not None else None),
+            (translate("explain", "HCO3, reported"), _mmol(gas.hco3_mmol_L)),
+            (translate("explain", "HCO3, calculated"), _mmol(gas.hco3_calculated_mmol_L)),
+            ("SBE", _mmol(gas.sbe_mmol_L)),
+            ("A-a", gas_pressure(gas.aa_gradient_mmHg, unit) if gas.aa_gradient_mmHg is not None else None),
+            (translate("explain", "Lactate"), _mmol(gas.lactate_mmol_L)),
+        )
+        yield from ((name, value, when) for name, value in rows if value is not None)
+
+
+def _mmol(value: float | None) -> str | None:
+    return None if value is None else f"{fixed(value, 1)} mmol/L"
+
+
+def _plain(key: str, value: float | str) -> str:
+    return value if isinstance(value, str) else quantity(key, value)

@@ -1,0 +1,334 @@
+"""The log strip: one line, always one key away. It says before Enter exactly what will be recorded, and for whom.
+
+The preview and the recording read the line by the same operation, so that they cannot differ. Enter while a
+preview is still awaited records once it has come and asks nothing.
+"""
+
+from __future__ import annotations
+
+from enum import StrEnum
+from html import escape
+
+from PySide6.QtCore import QEvent, Qt, Signal
+from PySide6.QtGui import QKeyEvent, QKeySequence
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QLineEdit, QPushButton, QSizePolicy, QVBoxLayout
+
+from app.failure import Failure
+from app.operations import entry
+from app.operations.entry import LineRequest, Preview, Recorded
+from app.operations.outcome import Outcome
+from app.phrases import channel_name
+from app.session import SessionModel
+from app.strip.completion import completed, completions
+from app.strip.preview_words import PreviewWords, preview_words
+from app.theme import Theme
+from app.words import Reader, sentence
+from core.record.episode import Episode
+
+MOST_UNDO = 50
+
+
+class State(StrEnum):
+    """What the line under the strip says."""
+
+    IDLE = "idle"
+    AWAITED = "awaited"
+    READY = "ready"
+    ASKING = "asking"
+    REFUSED = "refused"
+    TOLD = "told"
+
+
+class LineField(QLineEdit):
+    """The line itself. Tab completes, Esc leaves, Ctrl+Z on an empty line is the window's undo."""
+
+    left = Signal()
+    completion_wanted = Signal()
+
+    def event(self, event: QEvent) -> bool:
+        if event.type() == QEvent.Type.ShortcutOverride and isinstance(event, QKeyEvent) \
+                and not self.text() and event.matches(QKeySequence.StandardKey.Undo):  # fmt: skip
+            event.ignore()
+            return False
+        is_tab = event.type() == QEvent.Type.KeyPress and isinstance(event, QKeyEvent) and event.key() == Qt.Key.Key_Tab
+        if is_tab and completions(self.text(), self.cursorPosition()):
+            self.completion_wanted.emit()
+            return True
+        return super().event(event)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.left.emit()
+            return
+        super().keyPressEvent(event)
+
+
+class LogStrip(QFrame):
+    """The strip for the selected episode. `recorded` after each entry; `left` when Esc hands the focus back."""
+
+    recorded = Signal(object)
+    left = Signal()
+
+    def __init__(self, theme: Theme, model: SessionModel) -> None:
+        super().__init__()
+        self.setProperty("card", True)
+        self._model, self._theme = model, theme
+        self._record: Episode | None = None
+        self._label, self._gas_unit, self._zone = "", "mmHg", "UTC"
+        self.state = State.IDLE
+        self._preview: Preview | None = None
+        self._enter_pending = False
+        self._undo: list[Recorded] = []
+        self._off_mask = False
+        self.whom = QLabel()
+        self.whom.setProperty("role", "emphasis")
+        self.line = LineField()
+        self.line.setAccessibleName(self.tr("Log a line"))
+        self.said = QLabel()
+        self.said.setTextFormat(Qt.TextFormat.RichText)
+        self.said.setWordWrap(True)
+        self.said.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+        self.buttons: dict[str, QPushButton] = {}
+        self._row = QHBoxLayout()
+        self._column = QVBoxLayout(self)
+        self._lay_out()
+        self._connect()
+        self.set_theme(theme)
+        self.set_patient(None, "", "UTC", "mmHg")
+
+    def _lay_out(self) -> None:
+        self._row.addWidget(self.whom)
+        self._row.addWidget(self.line, 1)
+        for key, word, shortcut in (
+            ("gas sent", self.tr("Gas sent"), "F6"), ("mask", self.tr("Mask off"), "F7"),
+            ("checked no change", self.tr("Checked, no change"), "F8"),
+        ):  # fmt: skip
+            button = QPushButton(f"{word}  {shortcut}")
+            button.setAccessibleName(word)
+            button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
+            self.buttons[key] = button
+            self._row.addWidget(button)
+        self._column.addLayout(self._row)
+        self._column.addWidget(self.said)
+
+    def _connect(self) -> None:
+        self.line.textEdited.connect(self._edited)
+        self.line.returnPressed.connect(self._entered)
+        self.line.left.connect(self.leave)
+        self.line.completion_wanted.connect(self._complete)
+        self.buttons["gas sent"].clicked.connect(self.gas_sent)
+        self.buttons["mask"].clicked.connect(self.mask)
+        self.buttons["checked no change"].clicked.connect(self.checked)
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size."""
+        self._theme = theme
+        px = theme.px
+        self._column.setContentsMargins(px(12), px(6), px(12), px(6))
+        self._column.setSpacing(px(4))
+        self._row.setSpacing(px(8))
+        self.said.setMinimumHeight(round(theme.px(theme.type.body) * 1.4))
+
+    # whom it is for
+
+    def set_patient(self, record: Episode | None, label: str, zone: str, gas_unit: str, *, off_mask: bool = False) -> None:
+        """For whom the strip logs. A half-typed line for another patient is taken away, never carried over."""
+        other = (record.key if record is not None else None) != (self._record.key if self._record is not None else None)
+        self._record, self._label, self._zone, self._gas_unit = record, label, zone, gas_unit
+        self.whom.setText(label or self.tr("No patient"))
+        word = self.tr("Mask on") if off_mask else self.tr("Mask off")
+        self.buttons["mask"].setText(f"{word}  F7")
+        self.buttons["mask"].setAccessibleName(word)
+        self._off_mask = off_mask
+        for widget in (self.line, *self.buttons.values()):
+            widget.setEnabled(record is not None)
+        self.line.setPlaceholderText(self.tr("16/6 35    14:20 rr 28 spo2 91    gas sent    note ..."))
+        if other:
+            self._clear()
+
+    @property
+    def patient(self) -> str | None:
+        """The key of the episode it logs for."""
+        return None if self._record is None else self._record.key
+
+    def set_text(self, text: str) -> None:
+        """Put words on the line and preview them."""
+        if self._record is not None:
+            self.line.setText(text)
+            self.line.setFocus(Qt.FocusReason.ShortcutFocusReason)
+            self._edited(text)
+
+    def gas_sent(self) -> None:
+        """One key: a gas was sent. Enter records it."""
+        self.set_text("gas sent")
+
+    def mask(self) -> None:
+        """One key: the mask came off, or went on."""
+        self.set_text("mask on" if self._off_mask else "mask off")
+
+    def checked(self) -> None:
+        """One key: looked, changed nothing."""
+        self.set_text("checked no change")
+
+    def told(self) -> None:
+        """One key: whom was told, with the answer to be typed."""
+        self.set_text("told ")
+
+    def focus(self) -> None:
+        """Take the focus."""
+        self.line.setFocus(Qt.FocusReason.ShortcutFocusReason)
+        self.line.selectAll()
+
+    def leave(self) -> None:
+        """Empty the line and hand the focus back; nothing is recorded."""
+        self._clear()
+        self.left.emit()
+
+    def _clear(self) -> None:
+        self.line.clear()
+        self._preview, self._enter_pending = None, False
+        self._become(State.IDLE, self._hint())
+
+    # preview
+
+    def _edited(self, text: str) -> None:
+        self._preview, self._enter_pending = None, False
+        if not text.strip() or self._record is None:
+            self._become(State.IDLE, self._hint())
+            return
+        self.state = State.AWAITED
+        self._model.ask(entry.preview, self._request(False), done=self._previewed,
+                        failed=self._refused, subject="strip preview")  # fmt: skip
+
+    def _request(self, confirmed: bool) -> LineRequest:
+        assert self._record is not None
+        return LineRequest(self._record.key, self.line.text(), self._zone, confirmed)
+
+    def _previewed(self, outcome: Outcome[Preview]) -> None:
+        self._preview = outcome.value
+        words = preview_words(outcome.value, self._record, self._model.session.now(), self._reader())
+        if self._enter_pending and not words.questions:
+            self._record_now(confirmed=False)
+            return
+        self._enter_pending = False
+        self._become(State.READY, self._preview_html(words))
+
+    def _refused(self, failure: Failure) -> None:
+        self._enter_pending = False
+        options = completions(self.line.text(), self.line.cursorPosition())
+        if options and failure.message.key in ("line.word_unknown", "line.value_missing", "value.missing"):
+            self._become(State.REFUSED, self._completion_html(options))
+        else:
+            self._become(State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader())))
+
+    def _complete(self) -> None:
+        options = completions(self.line.text(), self.line.cursorPosition())
+        if options:
+            text, cursor = completed(self.line.text(), self.line.cursorPosition(), options[0])
+            self.line.setText(text)
+            self.line.setCursorPosition(cursor)
+            self._edited(text)
+
+    # recording
+
+    def _entered(self) -> None:
+        if self.state is State.ASKING:
+            self._record_now(confirmed=True)
+        elif self._preview is not None and self._preview.questions:
+            words = preview_words(self._preview, self._record, self._model.session.now(), self._reader())
+            ask = self.tr("Enter again says yes, Esc leaves it.")
+            self._become(State.ASKING, self._mark(" ".join(words.questions), ask))
+        elif self._preview is not None:
+            self._record_now(confirmed=False)
+        elif self.state is State.AWAITED:
+            self._enter_pending = True
+
+    def _record_now(self, *, confirmed: bool) -> None:
+        request = self._request(confirmed)
+        self.line.clear()
+        self._preview, self._enter_pending = None, False
+        self._become(State.AWAITED, escape(self.tr("Recording...")))
+        self._model.ask(entry.log_line, request, done=self._done, failed=self._failed)
+
+    def _done(self, outcome: Outcome[Recorded]) -> None:
+        self._undo = [*self._undo, outcome.value][-MOST_UNDO:]
+        self._become(State.TOLD, self._mark(self.tr("Recorded for {label}.").format(label=self._label),
+                                            self.tr("Ctrl+Z undoes it.")))  # fmt: skip
+        self.recorded.emit(outcome.value)
+
+    def _failed(self, failure: Failure) -> None:
+        self._become(State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader())))
+
+    # undo
+
+    def remember(self, recorded: Recorded) -> None:
+        """Something recorded elsewhere in the window (a form, a correction) that undo shall take back."""
+        self._undo = [*self._undo, recorded][-MOST_UNDO:]
+
+    @property
+    def can_undo(self) -> bool:
+        """Whether there is anything to take back."""
+        return bool(self._undo)
+
+    def undo(self) -> None:
+        """Take back the last recording made here."""
+        if not self._undo:
+            self._become(State.TOLD, escape(self.tr("Nothing to undo.")))
+            return
+        last = self._undo.pop()
+        request = entry.UndoRequest(last.episode, last.ids)
+        self._model.ask(entry.undo, request, done=self._undone, failed=self._failed)
+
+    def _undone(self, outcome: Outcome[Recorded]) -> None:
+        names = ", ".join(dict.fromkeys(channel_name(e.channel) for e in outcome.value.entries))
+        self._become(State.TOLD, self._mark(self.tr("Undone: {what}.").format(what=names),
+                                            self.tr("The record keeps both.")))  # fmt: skip
+        self.recorded.emit(outcome.value)
+
+    # words
+
+    def say(self, text: str) -> None:
+        """Say something under the line."""
+        self._become(State.TOLD, escape(text))
+
+    def plain(self) -> str:
+        """What stands under the line, in plain words."""
+        from PySide6.QtGui import QTextDocumentFragment
+
+        return QTextDocumentFragment.fromHtml(self.said.text()).toPlainText()
+
+    def _reader(self) -> Reader:
+        return Reader(self._zone, self._gas_unit)
+
+    def _hint(self) -> str:
+        if self._record is None:
+            return escape(self.tr("Choose a patient first."))
+        text = self.tr("/ goes to the line. What you type is shown here before Enter records it. Tab completes, Esc leaves.")
+        return f"<span style='color:{self._theme.colours.ink_quiet}'>{escape(text)}</span>"
+
+    def _preview_html(self, words: PreviewWords) -> str:
+        quiet = self._theme.colours.ink_quiet
+        text = f"<b>{escape(words.head)}:</b> {escape(', '.join(words.values))}."
+        if words.effects:
+            text += f" <span style='color:{quiet}'>{escape(' '.join(words.effects))}</span>"
+        if words.questions:
+            text += f" <b>{escape(' '.join(words.questions))}</b>"
+        else:
+            text += f" <span style='color:{quiet}'>{escape(self.tr('Enter records.'))}</span>"
+        return text
+
+    def _completion_html(self, options: tuple[str, ...]) -> str:
+        quiet = self._theme.colours.ink_quiet
+        first, *rest = options
+        others = "&nbsp;&nbsp; ".join(escape(w) for w in rest)
+        tab = escape(self.tr("Tab:"))
+        return f"<span style='color:{quiet}'>{tab}</span> <b>{escape(first)}</b>&nbsp;&nbsp; <span style='color:{quiet}'>{others}</span>"
+
+    def _mark(self, strong: str, rest: str) -> str:
+        return f"<b>{escape(strong)}</b> {escape(rest)}"
+
+    def _become(self, state: State, html: str) -> None:
+        self.state = state
+        self.said.setText(html)
+        self.said.setAccessibleName(self.plain())
+
