@@ -1,6 +1,6 @@
 """The figures of one episode as of one moment, computed in stages.
 
-    record -> gases -> anchors and responses -> trends and scores -> markers -> due items -> concern
+    record -> gases -> anchors and responses -> trends -> scores -> markers -> due items -> concern and levers
 
 Each stage reads the context that the earlier ones filled and makes a new one.
 """
@@ -11,18 +11,23 @@ from dataclasses import replace
 
 from core.judgement.anchors import Anchor, find_anchors
 from core.judgement.context import Context
+from core.judgement.course import with_courses
 from core.judgement.gas_findings import gas_figures
+from core.judgement.leak_trend import leak_figure
 from core.judgement.policy import Policy
 from core.judgement.response import judge_responses
-from core.judgement.score_inputs import barriers, hacor_at_gases, news2_latest
-from core.judgement.shapes import EpisodeFigures, ScoreFigure
+from core.judgement.score_findings import with_scores
+from core.judgement.shapes import EpisodeFigures, RatioFigure
 from core.judgement.support_findings import support_figure
+from core.judgement.trend import channel_trend, ratio_trends
 from core.record.channels import Group, Kind, by_group
 from core.record.episode import Episode
 from core.record.instant import Instant
-from core.record.message import Message
 from core.record.settings import SettingsInForce
 from core.record.support import support_time
+
+TRENDED = ("rr", "spo2", "hr", "vte_per_kg", "mv")
+"""Channels whose trend is shown beside the ratios and the leak."""
 
 
 def record_stage(episode: Episode, as_of: Instant, policy: Policy) -> Context:
@@ -40,18 +45,26 @@ def gas_stage(ctx: Context) -> Context:
 def response_stage(ctx: Context) -> tuple[Context, tuple[Anchor, ...]]:
     """Anchors, and what each did."""
     anchors = find_anchors(ctx.episode, ctx.settings, ctx.support, ctx.policy)
-    return replace(ctx, responses=judge_responses(ctx, anchors)), anchors
+    responses = with_courses(ctx, anchors, judge_responses(ctx, anchors))
+    return replace(ctx, responses=responses), anchors
 
 
-def score_stage(ctx: Context, anchors: tuple[Anchor, ...]) -> Context:
-    """Scores at their moments, from inputs that no anchor or break parts from them."""
-    walls = barriers(tuple(step.at for a in anchors for step in a.steps), ctx.support)
-    at_gases = hacor_at_gases(ctx, walls)
-    scores = {"news2": news2_latest(ctx, walls)}
-    scores["hacor"] = (
-        at_gases[max(at_gases)] if at_gases else ScoreFigure(reasons={"points": Message("score.no_gas", {})})
-    )
-    return replace(ctx, scores=scores, hacor_at_gases=at_gases)
+def trend_stage(ctx: Context) -> Context:
+    """P/F, S/F, ROX and leak over the policy's span."""
+    ratios = ratio_trends(ctx)
+    return replace(ctx, pf=ratios["pf"], sf=ratios["sf"], rox=ratios["rox"], leak=leak_figure(ctx))
+
+
+def judged(episode: Episode, as_of: Instant, policy: Policy) -> Context:
+    """Everything that markers and due items read."""
+    ctx, anchors = response_stage(gas_stage(record_stage(episode, as_of, policy)))
+    return with_scores(trend_stage(ctx), anchors)
+
+
+def channel_trends(ctx: Context) -> dict[str, RatioFigure]:
+    """The trend of each channel that is trended and logged."""
+    logged = (c for c in TRENDED if len(ctx.episode.number(c.removesuffix("_per_kg"))) or c == "rr")
+    return {c: channel_trend(ctx, c) for c in logged}
 
 
 def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> EpisodeFigures:
@@ -59,8 +72,7 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
 
     `episode` may hold later happenings: they are cut off first, so nothing later can leak into a figure.
     """
-    ctx, anchors = response_stage(gas_stage(record_stage(episode, as_of, policy)))
-    ctx = score_stage(ctx, anchors)
+    ctx = judged(episode, as_of, policy)
     return EpisodeFigures(
         episode=episode.key,
         as_of=as_of,
@@ -70,6 +82,11 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
         support=support_figure(ctx.episode, ctx.settings, ctx.support, as_of),
         responses=ctx.responses,
         gases=ctx.gases,
+        pf=ctx.pf,
+        sf=ctx.sf,
+        rox=ctx.rox,
+        trends=channel_trends(ctx),
+        leak=ctx.leak,
         scores=ctx.scores,
         policy_hash=policy.hash,
     )

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from math import isnan
 
 import numpy as np
+from numpy.typing import NDArray
 
 from core.judgement.context import Context
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
@@ -24,6 +25,8 @@ from core.record.support import SupportTime
 
 DEVICE_MEDIAN = 15 * MINUTE
 """A device rate is taken as the median of this span around the moment: single breaths are noise."""
+Walls = NDArray[np.int64]
+"""Moments that no score may reach across, sorted."""
 OBSERVED = ("rr", "spo2", "hr", "sbp", "temp")
 
 
@@ -49,9 +52,7 @@ class Found:
 NOTHING = Found()
 
 
-def barriers(
-    anchors: tuple[Instant, ...], support: SupportTime
-) -> np.ndarray[tuple[int], np.dtype[np.int64]]:
+def barriers(anchors: tuple[Instant, ...], support: SupportTime) -> Walls:
     """The moments that no score may reach across: anchors, and the edges of breaks. Sorted."""
     edges = [b.start for b in support.breaks] + [b.end for b in support.breaks if b.end is not None]
     return np.array(sorted({*anchors, *edges}), np.int64)
@@ -62,7 +63,7 @@ def nearest(
     channel: str,
     at: Instant,
     within_min: float,
-    walls: np.ndarray[tuple[int], np.dtype[np.int64]],
+    walls: Walls,
 ) -> Found:
     """The value of a numeric channel nearest to a moment: a person's count first, else the machine's.
 
@@ -91,7 +92,7 @@ def _from_machine(near: Series, at: Instant) -> Found:
     return Found(float(np.median(values)), int(around.t[i]))
 
 
-def _between_walls(at: Instant, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> tuple[Instant, Instant]:
+def _between_walls(at: Instant, walls: Walls) -> tuple[Instant, Instant]:
     """The span around a moment that no wall cuts."""
     i = int(np.searchsorted(walls, at, side="left"))
     low = int(walls[i - 1]) + 1 if i > 0 else -(2**62)
@@ -114,48 +115,59 @@ def nearest_word(episode: Episode, channel: str, at: Instant, within_min: float)
     return Found(words.v[i], int(words.t[i]))
 
 
-def rate_at(ctx: Context, at: Instant, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> Found:
+def rate_at(ctx: Context, at: Instant, walls: Walls) -> Found:
     """The respiratory rate: a counted one beats the machine's."""
     within = ctx.policy.freshness.vitals_min.value
     counted = nearest(ctx.episode, "rr", at, within, walls)
     return counted if counted.value is not None else nearest(ctx.episode, "rr_total", at, within, walls)
 
 
-def hacor_at(ctx: Context, gas: GasFigure, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> ScoreFigure:
-    """HACOR 2017 at a gas, with the vitals nearest to it."""
+def gas_inputs(ctx: Context, gas: GasFigure, walls: Walls) -> dict[str, Found]:
+    """The five inputs of HACOR at a gas."""
     fresh = ctx.policy.freshness
-    found = {
+    return {
         "hr": nearest(ctx.episode, "hr", gas.at, fresh.vitals_min.value, walls),
         "ph": Found(gas.ph, gas.at, gas.ph_text),
         "gcs": nearest(ctx.episode, "gcs", gas.at, fresh.gcs_min.value, walls),
         "pf": Found(gas.pf_mmHg, gas.at) if gas.pf_mmHg is not None else NOTHING,
         "rr": rate_at(ctx, gas.at, walls),
     }
+
+
+def hacor_at(ctx: Context, gas: GasFigure, walls: Walls) -> ScoreFigure:
+    """HACOR 2017 at a gas, with the vitals nearest to it."""
+    found = gas_inputs(ctx, gas, walls)
     score = hacor(
         hr=found["hr"].number, ph=gas.ph, gcs=found["gcs"].number, pf=gas.pf_mmHg, rr=found["rr"].number,
-        paco2=gas.paco2_mmHg, texts={k: f.text for k, f in found.items()},
-        on_mask=_on_mask(ctx, gas.at),
+        paco2=gas.paco2_mmHg, texts=texts_of(found), on_mask=on_mask(ctx, gas.at),
     )  # fmt: skip
-    reasons = {"pf": gas.reasons["pf_mmHg"]} if gas.pf_mmHg is None and "pf_mmHg" in gas.reasons else {}
-    return score_figure(score, gas.at, found, reasons)
+    return score_figure(score, gas.at, found, pf_reason(gas))
 
 
-def _on_mask(ctx: Context, at: Instant) -> bool | None:
+def texts_of(found: Mapping[str, Found]) -> dict[str, str | None]:
+    """The inputs as typed: they decide a rounding edge."""
+    return {name: f.text for name, f in found.items()}
+
+
+def pf_reason(gas: GasFigure) -> dict[str, Message]:
+    """Why a gas has no P/F, if it has none."""
+    return {"pf": gas.reasons["pf_mmHg"]} if gas.pf_mmHg is None and "pf_mmHg" in gas.reasons else {}
+
+
+def on_mask(ctx: Context, at: Instant) -> bool | None:
     """On mask ventilation at a moment; None where support's start is not known. High flow is no mask."""
     if ctx.support.start is None:
         return False
     return ctx.support.on_support(at) and ctx.settings.at(at).mode != "high-flow nasal"
 
 
-def hacor_at_gases(
-    ctx: Context, walls: np.ndarray[tuple[int], np.dtype[np.int64]]
-) -> dict[Instant, ScoreFigure]:
+def hacor_at_gases(ctx: Context, walls: Walls) -> dict[Instant, ScoreFigure]:
     """HACOR at every arterial or capillary gas drawn on support."""
     judged = (g for g in ctx.gases if g.site in STANDS_FOR_ARTERIAL and not g.off_support)
     return {g.at: hacor_at(ctx, g, walls) for g in judged}
 
 
-def news2_latest(ctx: Context, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> ScoreFigure:
+def news2_latest(ctx: Context, walls: Walls) -> ScoreFigure:
     """NEWS2 at the latest vitals that a person took (the machine's, where nobody took any)."""
     at = _latest_vitals(ctx.episode)
     if at is None:
@@ -163,7 +175,7 @@ def news2_latest(ctx: Context, walls: np.ndarray[tuple[int], np.dtype[np.int64]]
     return news2_at(ctx, at, walls)
 
 
-def news2_at(ctx: Context, at: Instant, walls: np.ndarray[tuple[int], np.dtype[np.int64]]) -> ScoreFigure:
+def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
     """NEWS2 at a moment. Scale 2 only where a clinician recorded it."""
     fresh = ctx.policy.freshness
     found = {
@@ -180,7 +192,7 @@ def news2_at(ctx: Context, at: Instant, walls: np.ndarray[tuple[int], np.dtype[n
         rr=found["rr"].number, spo2=found["spo2"].number, on_oxygen=oxygen, sbp=found["sbp"].number,
         hr=found["hr"].number, acvpu=found["acvpu"].word, temp=found["temp"].number,
         scale=2 if ctx.episode.latest_text("spo2_scale") == "2" else 1,
-        texts={k: f.text for k, f in found.items()}, age=ctx.episode.latest("age"),
+        texts=texts_of(found), age=ctx.episode.latest("age"),
     )  # fmt: skip
     return score_figure(score, at, found, {})
 

@@ -141,6 +141,7 @@ _PROFILE = (
     _choice("resuscitation", "Resuscitation decision", P, *RESUSCITATION),
     _words("contact", "Responsible clinician", P),
     _number("sofa", "SOFA", P, u.POINTS, (0, 24)),
+    _number("apache", "APACHE II", P, u.POINTS, (0, 71)),
     _choice("immunosuppression", "Immunosuppression", P, *YES_NO),
     _choice("septic_shock", "Septic shock", P, *YES_NO),
     _choice("pulmonary_ards", "Pulmonary ARDS", P, *YES_NO),
