@@ -103,6 +103,13 @@ class WardLanes(QAbstractScrollArea):
         lanes = len(self.spec.lanes) if self.spec is not None else 8
         return QSize(self.theme.px(1100), self.theme.px(36 + 78 * lanes))
 
+    def height_for(self, width: int) -> int:
+        """Pixels that all lanes need at their least height, e.g. for a picture of the whole ward."""
+        if self.spec is None:
+            return self.minimumSizeHint().height()
+        g = geometry_of(self.spec, self.theme, width, 0)
+        return round(g.head + g.top(len(self.spec.lanes)))
+
     def minimumSizeHint(self) -> QSize:
         return QSize(self.theme.px(640), self.theme.px(180))
 
@@ -184,11 +191,16 @@ class WardLanes(QAbstractScrollArea):
         lane, item = self.hit_at(event.position())
         if lane is not None and self.spec is not None:
             self._choose(self.spec.lanes.index(lane), item)
+        event.accept()
+
+    def mouseReleaseEvent(self, event: QMouseEvent) -> None:
+        event.accept()
 
     def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
         lane, item = self.hit_at(event.position())
         if lane is not None:
             self._open(lane, item)
+        event.accept()
 
     def mouseMoveEvent(self, event: QMouseEvent) -> None:
         self._hover(event.position())

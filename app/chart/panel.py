@@ -225,7 +225,8 @@ class PanelRow(ClockRow):
             else:
                 for curve in drawn.curves:
                     t, v = curve.lone_points()
-                    self._draw_spots(painter, drawn, t, drawn.on_scale(v), np.zeros(len(t), np.uint8), 4)
+                    fresh = np.zeros(len(t), np.uint8)
+                    self._draw_spots(painter, drawn, t, drawn.on_scale(v), fresh, self.theme.px(5))
             self._draw_off_scale(painter, drawn)
         painter.restore()
         self.draw_now(painter)

@@ -72,15 +72,14 @@ def svg_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title:
     """Writes the chart as SVG; OSError where the file cannot be written."""
     from PySide6.QtSvg import QSvgGenerator
 
+    _check_writable(path)
     generator = QSvgGenerator()
     generator.setFileName(str(path))
     generator.setSize(QSize(width, height))
     generator.setViewBox(QRectF(0, 0, width, height))
     generator.setResolution(_DOTS_PER_INCH)
     generator.setTitle(title)
-    painter = QPainter()
-    if not painter.begin(generator):
-        raise OSError(f"{path}: cannot be written; a folder that exists and may be written to is accepted")
+    painter = QPainter(generator)
     painter.fillRect(QRectF(0, 0, width, height), QColor(theme.colours.ground))
     _paint(spec, theme, painter, width, height, 1.0)
     painter.end()
@@ -88,18 +87,28 @@ def svg_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title:
 
 def pdf_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
     """Writes the chart as a PDF of one page of its own size; OSError where the file cannot be written."""
+    _check_writable(path)
     writer = QPdfWriter(str(path))
     points = QSizeF(width * 72 / _DOTS_PER_INCH, height * 72 / _DOTS_PER_INCH)
     writer.setPageSize(QPageSize(points, QPageSize.Unit.Point, "", QPageSize.SizeMatchPolicy.ExactMatch))
     writer.setPageMargins(QMarginsF(0, 0, 0, 0))
     writer.setResolution(_DOTS_PER_INCH)
     writer.setTitle(title)
-    painter = QPainter()
-    if not painter.begin(writer):
-        raise OSError(f"{path}: cannot be written; a folder that exists and may be written to is accepted")
+    painter = QPainter(writer)
     painter.fillRect(QRectF(0, 0, width, height), QColor(theme.colours.ground))
     _paint(spec, theme, painter, width, height, 1.0)
     painter.end()
+
+
+def _check_writable(path: Path) -> None:
+    """Qt only warns where it cannot write, and would leave the reader without a file or a reason."""
+    try:
+        with path.open("wb"):
+            pass
+    except OSError as error:
+        raise OSError(
+            f"{path}: cannot be written ({error.strerror}); a folder that exists and may be written to is accepted"
+        ) from error
 
 
 def paint_chart(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int) -> None:

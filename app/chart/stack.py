@@ -4,7 +4,7 @@ from collections.abc import Sequence
 
 import pyqtgraph as pg
 from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QPainter, QPen, QResizeEvent
+from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QResizeEvent
 from PySide6.QtWidgets import QWidget
 
 from app.chart.panel import PanelRow
@@ -269,6 +269,14 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
             self.bracket_activated.emit(found)
         elif isinstance(found, Tick):
             self.tick_activated.emit(found)
+
+    def mousePressEvent(self, event: QMouseEvent) -> None:
+        super().mousePressEvent(event)
+        event.accept()  # a press on a chart is the chart's, whatever lies under it
+
+    def mouseReleaseEvent(self, event: QMouseEvent) -> None:
+        super().mouseReleaseEvent(event)
+        event.accept()
 
     def leaveEvent(self, event: QEvent) -> None:
         self.point_at(None)

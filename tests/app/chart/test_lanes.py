@@ -1,0 +1,138 @@
+"""The ward view: picking by mouse, choosing by keys, words for both."""
+
+from dataclasses import replace
+
+import pytest
+from PySide6.QtCore import QPoint, Qt
+
+from app.chart.lanes import WardLanes
+from app.chart.shapes import LaneKind
+from app.theme import DARK, LIGHT
+from tests.app.chart.conftest import at
+
+
+@pytest.fixture
+def ward(qtbot, lanes_spec):
+    view = WardLanes(LIGHT)
+    qtbot.addWidget(view)
+    view.set_spec(lanes_spec)
+    view.resize(1200, 600)
+    view.show()
+    qtbot.waitExposed(view)
+    return view
+
+
+def point_of(ward, item, lane=0):
+    g = ward._geometry
+    placed = next(p for p in ward._placed[lane] if p.item is item)
+    middle = placed.box.center()
+    return QPoint(round(middle.x()), round(g.head + g.top(lane) + middle.y()))
+
+
+@pytest.mark.parametrize("kind", LaneKind)
+def test_a_click_picks_the_thing_under_it(ward, qtbot, lanes_spec, kind):
+    item = next(i for i in lanes_spec.lanes[0].items if i.kind is kind)
+    with qtbot.waitSignal(ward.selection_changed) as caught:
+        qtbot.mouseClick(ward.viewport(), Qt.MouseButton.LeftButton, pos=point_of(ward, item))
+    assert caught.args == ["e1", item]
+    assert ward.accessibleDescription() == f"Bed 1: {item.sentence}"
+
+
+def test_hovering_tells_in_words(ward, qtbot, lanes_spec):
+    heard = []
+    ward.hovered.connect(heard.append)
+    qtbot.mouseMove(ward.viewport(), point_of(ward, lanes_spec.lanes[0].items[0]))
+    qtbot.waitUntil(lambda: heard == ["gas at 30"])
+    qtbot.mouseMove(ward.viewport(), QPoint(20, 70))
+    qtbot.waitUntil(lambda: heard == ["gas at 30", "Bed 1 in words"])
+
+
+def test_keys_choose_lanes_and_items_in_order_of_time(ward, qtbot):
+    sentences = []
+
+    def heard(_key, item):
+        sentences.append(None if item is None else item.sentence)
+
+    ward.selection_changed.connect(heard)
+    for _ in range(3):
+        qtbot.keyClick(ward, Qt.Key.Key_Right)
+    qtbot.keyClick(ward, Qt.Key.Key_End)
+    qtbot.keyClick(ward, Qt.Key.Key_Left)
+    qtbot.keyClick(ward, Qt.Key.Key_Home)
+    qtbot.keyClick(ward, Qt.Key.Key_Escape)
+    assert sentences == ["gas at 30", "IPAP 16", "pH below 7.25", "gas due", "gas at 300", "gas at 30", None]
+    qtbot.keyClick(ward, Qt.Key.Key_Down)
+    assert ward.selected_key == "e2"
+    qtbot.keyClick(ward, Qt.Key.Key_Right)
+    assert ward.selected_item is None  # a lane with nothing in it
+
+
+def test_enter_opens_the_lane_or_the_item(ward, qtbot):
+    with qtbot.waitSignal(ward.lane_activated) as caught:
+        qtbot.keyClick(ward, Qt.Key.Key_Return)
+    assert caught.args == ["e1"]
+    qtbot.keyClick(ward, Qt.Key.Key_Right)
+    with qtbot.waitSignal(ward.item_activated) as caught:
+        qtbot.keyClick(ward, Qt.Key.Key_Return)
+    assert caught.args[1].sentence == "gas at 30"
+
+
+def test_a_chosen_lane_far_down_is_brought_into_view(ward):
+    ward.select("e25")
+    g, bar = ward._geometry, ward.verticalScrollBar()
+    top = g.top(24) - bar.value()
+    assert 0 <= top <= ward.viewport().height() - g.head - g.lane
+
+
+def test_what_is_chosen_stays_chosen_when_lanes_are_sorted_anew(ward, lanes_spec):
+    item = lanes_spec.lanes[0].items[1]
+    ward.select("e1", item)
+    ward.set_spec(replace(lanes_spec, lanes=lanes_spec.lanes[::-1]))
+    assert (ward.selected_key, ward.selected_item) == ("e1", item)
+    ward.set_spec(replace(lanes_spec, lanes=lanes_spec.lanes[1:]))
+    assert (ward.selected_key, ward.selected_item) == ("e2", None)
+
+
+def test_an_unknown_lane_is_refused(ward):
+    with pytest.raises(KeyError, match="nowhere"):
+        ward.select("nowhere")
+
+
+def test_an_empty_ward_says_so(ward, lanes_spec, qtbot):
+    ward.set_spec(replace(lanes_spec, lanes=(), empty_word="No episode is open"))
+    worded = ward.grab().toImage()
+    ward.set_spec(replace(lanes_spec, lanes=()))
+    assert ward.grab().toImage() != worded
+    qtbot.keyClick(ward, Qt.Key.Key_Down)
+    assert ward.sentence_of_selection() == ""
+
+
+def test_gases_of_one_minute_do_not_hide_each_other(ward, lanes_spec):
+    first = lanes_spec.lanes[0]
+    twin = replace(first.items[0], at=at(31), sentence="twin")
+    ward.set_spec(replace(lanes_spec, lanes=(replace(first, items=(first.items[0], twin)),)))
+    one, other = ward._placed[0]
+    assert abs(one.row - other.row) >= 14
+
+
+def test_each_part_of_a_lane_changes_the_picture(ward, lanes_spec):
+    lane = lanes_spec.lanes[0]
+    pictures = [ward.grab().toImage()]
+    for change in ({"due_late": True}, {"first_word": "See first"}, {"closed": True}, {"flag_word": "low pH"}):
+        ward.set_spec(replace(lanes_spec, lanes=(replace(lane, **change), *lanes_spec.lanes[1:])))
+        pictures.append(ward.grab().toImage())
+    ward.set_spec(lanes_spec)
+    ward.set_theme(DARK)
+    pictures.append(ward.grab().toImage())
+    assert all(a != b for n, a in enumerate(pictures) for b in pictures[:n])
+
+
+@pytest.mark.parametrize("scale", [1.0, 1.5, 2.0])
+@pytest.mark.parametrize("width", [1280, 1920])
+def test_the_clock_keeps_room_at_any_text_size(qtbot, lanes_spec, scale, width):
+    view = WardLanes(LIGHT.scaled(scale))
+    qtbot.addWidget(view)
+    view.set_spec(lanes_spec)
+    view.resize(width, 800)
+    view.show()
+    assert view._geometry.clock >= 0.35 * width
