@@ -36,6 +36,7 @@ from tests.support.simulated import POLICY, as_episode, instant
 TRAINING = range(1000, 1060)
 HELD_OUT = range(2000, 2060)
 BEYOND_MIN = 120
+WIDTHS = (9, 12, 12, 12, 10, 10)
 
 
 @dataclass(frozen=True)
@@ -127,7 +128,8 @@ def main() -> None:
     """Print the fit and its test."""
     by_kind = {kind: residuals([kind], TRAINING) for kind in SCENARIOS}
     training, held_out = pooled(by_kind.values()), residuals(SCENARIOS, HELD_OUT)
-    print(f"{'':15}{'minutes':>9}{'fitted q/h':>12}{'worst kind':>12}{'used q/h':>12}{'training':>10}{'held out':>10}")
+    heads = zip(("minutes", "fitted q/h", "worst kind", "used q/h", "training", "held out"), WIDTHS, strict=True)
+    print(" " * 15 + "".join(f"{head:>{width}}" for head, width in heads))
     for k, q in USED.items():
         worst = max(fitted(one[k]) for one in by_kind.values() if one[k].error.size)
         print(f"{k:15}{training[k].error.size:9}{fitted(training[k]):12.3g}{worst:12.3g}{q:12.3g}"
