@@ -44,18 +44,28 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
             keys.write_envelope(keys.envelope_path(path), new.envelope)
         make_durable(path, key)
         database = Database(path, key)
-        with database.write() as connection:
-            schema.metadata.create_all(connection)
-            create_triggers(connection)
-            connection.execute(
-                sa.insert(schema.store_facts), [{"key": k, "value": v} for k, v in facts.items()]
-            )
-            _stamp(connection)
+        try:
+            _fill(database, facts)
+        except BaseException:
+            database.close()
+            raise
     except BaseException:
-        for made in (path, keys.envelope_path(path)):
+        for made in (
+            path,
+            keys.envelope_path(path),
+            *(path.with_name(path.name + end) for end in ("-wal", "-shm")),
+        ):
             made.unlink(missing_ok=True)
         raise
     return Opened(database, key, facts, (), new.recovery_code if new else None)
+
+
+def _fill(database: Database, facts: dict[str, str]) -> None:
+    with database.write() as connection:
+        schema.metadata.create_all(connection)
+        create_triggers(connection)
+        connection.execute(sa.insert(schema.store_facts), [{"key": k, "value": v} for k, v in facts.items()])
+        _stamp(connection)
 
 
 def _check_free(path: Path) -> None:

@@ -44,6 +44,7 @@ from storage.rules import Replaced, is_device_channel
 __all__ = ["Changes", "Receipt", "SourceFacts", "Store", "StoreError"]
 
 _ALL = 2**62
+_PRINTED_DIGITS = 16
 
 
 @dataclass(frozen=True)
@@ -134,7 +135,17 @@ class Store:
     def printed_head(self) -> str:
         """Sequence and the first 16 hex digits of the hash: what a print shows to prove the chain's tail."""
         seq, digest = self._head()
-        return f"{seq} {digest[:16]}"
+        return f"{seq} {digest[:_PRINTED_DIGITS]}"
+
+    def proves(self, printed: str) -> bool:
+        """Whether the store still holds the head that was once printed, or written down by a witness."""
+        seq, _, digits = printed.strip().partition(" ")
+        if not seq.isdigit() or len(digits) != _PRINTED_DIGITS:
+            return False
+        query = sa.select(s.batch.c.hash).where(s.batch.c.last_seq == int(seq))
+        with self._opened.database.read() as connection:
+            found = connection.execute(query).scalar()
+        return found is not None and str(found).startswith(digits.lower())
 
     def _head(self) -> tuple[int, str]:
         with self._opened.database.read() as connection:
