@@ -21,6 +21,7 @@ ABSENT = "not recorded"
 MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
 """Fixed letters, so that no computer's region turns a day into a month."""
 GAS_UNITS = ("mmHg", "kPa")
+_CHOICES = {"copd": "COPD", "ards": "ARDS"}
 _GAS_DECIMALS = {"mmHg": 0, "kPa": 1}
 
 
@@ -108,7 +109,7 @@ def minutes(count: float) -> str:
 def since(at: Instant, now: Instant) -> str:
     """How long ago, e.g. "35 min ago"; a moment to come is "in 35 min".
 
-    >>> since(0, 35 * MINUTE), since(2 * HOUR, 0), since(0, 20)
+    >>> since(0, 35 * MINUTE), since(120 * MINUTE, 0), since(0, 20)
     ('35 min ago', 'in 2 h', 'just now')
     """
     length = (now - at) / MINUTE
@@ -154,7 +155,7 @@ def quantity(channel: str, value: float | str | None, gas_unit: str = "mmHg") ->
         return ABSENT
     known = CHANNELS.get(channel)
     if isinstance(value, str) or known is None or known.kind is not Kind.NUMBER:
-        return value if isinstance(value, str) else trimmed(value)
+        return _CHOICES.get(value, value) if isinstance(value, str) else trimmed(value)
     if known.unit == "fraction":
         return fraction(value)
     if channel in ("paco2", "pao2", "usual_paco2"):

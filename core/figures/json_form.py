@@ -10,6 +10,7 @@ from dataclasses import fields, is_dataclass
 from typing import Any
 
 from core.judgement.shapes import EpisodeFigures, LeakFigure, RatioFigure
+from core.record.channels import CHANNELS, Kind
 from core.record.local_time import zoned_iso
 from core.record.message import Message
 
@@ -32,7 +33,7 @@ def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
         "label": figures.label,
         "as_of": form.instant(figures.as_of),
         "policy": figures.policy_hash,
-        "profile": dict(figures.profile),
+        "profile": {k: form.fact(k, v) for k, v in figures.profile.items()},
         "support": form.plain(figures.support),
         "responses": [form.plain(r) for r in figures.responses],
         "gases": [form.plain(g) for g in figures.gases],
@@ -63,6 +64,11 @@ class _Form:
 
     def instant(self, at: int) -> str:
         return zoned_iso(at, self.zone)
+
+    def fact(self, channel: str, value: float | str | None) -> float | str | None:
+        """A profile fact; a moment among them as ISO 8601."""
+        is_moment = CHANNELS[channel].kind is Kind.INSTANT and isinstance(value, (int, float))
+        return self.instant(int(value)) if is_moment else value  # type: ignore[arg-type]
 
     def message(self, message: Message) -> Json:
         out: Json = {"key": message.key, "values": dict(message.values)}

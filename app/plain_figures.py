@@ -1,0 +1,102 @@
+"""Figures of an episode as plain text, whole, for reading in a console or pasting."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from app import formats
+from app.finding_names import lever_name
+from app.words import Reader, sentence
+from app.words.figure_lines import FigureLines
+from core.judgement.shapes import EpisodeFigures, ResponseFigure
+from core.record.channels import CHANNELS, Kind
+
+_HIDDEN = frozenset({"label", "plan", "jobs", "handover_remark"})
+
+
+def episode_text(figures: EpisodeFigures, reader: Reader) -> str:
+    """Everything computed for one episode, under headings."""
+    lines = FigureLines(reader)
+    head = f"{figures.label} ({figures.episode}), as of {formats.wall(figures.as_of, reader.zone)}"
+    parts = [head, "=" * len(head)]
+    if figures.concern.why is not None:
+        parts.append(sentence(figures.concern.why, reader))
+    for heading, body in _sections(figures, lines):
+        rows = list(body)
+        parts += ["", heading, *(f"  {row}" for row in rows or [lines.tr("none")])]
+    return "\n".join(parts)
+
+
+def _sections(f: EpisodeFigures, lines: FigureLines) -> Iterator[tuple[str, Iterator[str]]]:
+    yield "Support", iter((lines.settings(f.support), lines.on_mask(f.support), *_absent(f, lines)))
+    yield "Profile", _profile(f, lines)
+    yield "Flags", _flags(f, lines)
+    yield "Due", (lines.due(d) for d in f.due if d.state != "done")
+    yield "Responses", (row for r in f.responses for row in _response(r, lines))
+    yield "Gases", (lines.gas(g) for g in f.gases)
+    yield "Trends", iter(
+        (lines.ratio("P/F", f.pf, is_pressure=True), lines.ratio("S/F", f.sf), lines.ratio("ROX", f.rox, decimals=2),
+         lines.leak(f.leak))
+    )  # fmt: skip
+    yield "Scores", (lines.score(name, s) for name, s in f.scores.items() if s.enabled)
+    if f.levers:
+        yield "Levers (a qualified person decides)", _levers(f, lines)
+    warnings = [*f.warnings, *(w for g in f.gases for w in g.warnings)]
+    if warnings:
+        yield "To check", (sentence(w, lines.reader) for w in dict.fromkeys(warnings))
+
+
+def _absent(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
+    """Why a setting is not known."""
+    said = dict.fromkeys(sentence(m, lines.reader) for m in f.support.reasons.values())
+    if said:
+        yield "; ".join(said)
+
+
+def _profile(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
+    for key, value in f.profile.items():
+        if value is None or key in _HIDDEN:
+            continue
+        channel = CHANNELS[key]
+        if channel.kind is Kind.INSTANT and not isinstance(value, str):
+            text = formats.wall(int(value), lines.reader.zone)
+        else:
+            text = formats.quantity(key, value, lines.reader.gas_unit)
+        yield f"{channel.name}: {text}"
+
+
+def _flags(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
+    for flag in f.flags:
+        indent = "" if flag.strongest else "  "
+        yield indent + lines.flag_head(flag)
+        yield f"{indent}  {lines.evidence(flag)}"
+        yield f"{indent}  {lines.certainty(flag)}"
+
+
+def _response(r: ResponseFigure, lines: FigureLines) -> Iterator[str]:
+    yield f"{formats.wall(r.anchor_at, lines.reader.zone)} {lines.anchor(r)}"
+    yield f"  {lines.verdict(r)}"
+    if r.baseline_at is not None:
+        parts = [f"pH {formats.fixed(r.baseline_ph, 2)}" if r.baseline_ph is not None else "",
+                 f"PaCO2 {lines.pressure(r.baseline_paco2_mmHg)}" if r.baseline_paco2_mmHg is not None else "",
+                 f"P/F {lines.pressure(r.baseline_pf_mmHg)}" if r.baseline_pf_mmHg is not None else ""]  # fmt: skip
+        yield f"  baseline {formats.wall(r.baseline_at, lines.reader.zone)}: {', '.join(p for p in parts if p)}"
+    for g in r.gases:
+        verdict = g.verdict or "not judged"
+        yield f"  {formats.wall(g.at, lines.reader.zone)} {verdict}: {lines.deltas(g)}"
+        for also in g.also_changed:
+            yield f"    in between: {formats.clock(also.at, lines.reader.zone)} {lines.step(also)}"
+        if g.why:
+            yield f"    {lines.sentences(g.why)}"
+        since = g.since_start
+        if since.verdict:
+            lost = ", gain lost" if since.gain_lost else ""
+            yield f"    since the start: {since.verdict}{lost}"
+
+
+def _levers(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
+    for lever in f.levers:
+        can = "can act" if lever.can_act else "cannot act"
+        yield f"{lever_name(lever.key, lines.reader)}: {can}. {lines.sentences((*lever.why, *lever.limits))}".rstrip()
+
+

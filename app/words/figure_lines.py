@@ -1,0 +1,289 @@
+"""Figures as lines of text: settings, gases, responses, flags, due items, scores. Shared by print and console."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from app import formats
+from app.words import Reader, sentence
+from app.words.template import quantity_name
+from core.judgement.shapes import (
+    DueFigure,
+    FlagFigure,
+    GasFigure,
+    JudgedGas,
+    LeakFigure,
+    RatioFigure,
+    Reasons,
+    ResponseFigure,
+    ScoreFigure,
+    Step,
+    SupportFigure,
+)
+from core.record.instant import Instant
+from core.record.message import Message
+
+_ANCHORS = {"start": "Support started", "interface": "Interface changed", "break_end": "Break ended"}
+SCORE_NAMES = {"hacor": "HACOR", "hacor_updated": "HACOR, updated", "news2": "NEWS2", "rox": "ROX"}
+
+
+@dataclass(frozen=True, slots=True)
+class FigureLines:
+    """Writes figures for one reader."""
+
+    reader: Reader
+
+    def tr(self, text: str) -> str:
+        """A phrase in the reader's language."""
+        return self.reader.translate(text)
+
+    def settings(self, s: SupportFigure) -> str:
+        """The settings in force on one line; what is not known says so."""
+        parts = [s.mode or self.tr("mode not recorded"), *self._pressures(s), self.oxygen(s)]
+        if s.rate_set_per_min is not None:
+            parts.append(f"{self.tr('backup rate')} {formats.trimmed(s.rate_set_per_min)}/min")
+        if s.ti_s is not None:
+            parts.append(f"Ti {formats.trimmed(s.ti_s)} s")
+        if s.interface:
+            parts.append(f"{s.interface} {self.tr('mask')}" if s.interface != "helmet" else s.interface)
+        return ", ".join(p for p in parts if p)
+
+    def _pressures(self, s: SupportFigure) -> list[str]:
+        if s.ipap_cmH2O is not None:
+            epap = formats.trimmed(s.epap_cmH2O) if s.epap_cmH2O is not None else self.tr("not recorded")
+            support = s.pressure_support_cmH2O
+            more = f" (PS {formats.trimmed(support)})" if support is not None else ""
+            return [f"IPAP {formats.trimmed(s.ipap_cmH2O)} / EPAP {epap} cmH2O{more}"]
+        return [f"{formats.trimmed(s.epap_cmH2O)} cmH2O"] if s.epap_cmH2O is not None else []
+
+    def oxygen(self, s: SupportFigure) -> str:
+        """The oxygen given: FiO2, or a flow whose FiO2 is not known."""
+        if s.fio2 is not None:
+            return f"FiO2 {formats.fraction(s.fio2)}"
+        flow = f"{formats.trimmed(s.o2_flow_L_per_min)} L/min, " if s.o2_flow_L_per_min is not None else ""
+        return f"{self.tr('oxygen')} {flow}{self.tr('FiO2 not known')}" if flow else self.tr("FiO2 not known")
+
+    def on_mask(self, s: SupportFigure) -> str:
+        """Since when support runs, and hours on the mask."""
+        if s.since is None:
+            return self.tr("start of support not recorded")
+        text = f"{self.tr('since')} {formats.wall(s.since, self.reader.zone)}"
+        if s.hours_on_mask is not None:
+            text += f", {formats.hours(s.hours_on_mask)} {self.tr('on the mask')}"
+        if s.hours_on_mask_last_24h is not None:
+            text += f" ({formats.hours(s.hours_on_mask_last_24h)} {self.tr('in the last 24 h')})"
+        if s.ended_at is not None:
+            why = f", {s.end_reason}" if s.end_reason else ""
+            text += f"; {self.tr('ended')} {formats.wall(s.ended_at, self.reader.zone)}{why}"
+        elif s.break_since is not None:
+            text += f"; {self.tr('off the mask since')} {formats.clock(s.break_since, self.reader.zone)}"
+        return text
+
+    def ph(self, gas: GasFigure) -> str:
+        """pH with the precision it was reported in."""
+        return self.absent() if gas.ph is None else gas.ph_text or formats.fixed(gas.ph, 2)
+
+    def paco2(self, gas: GasFigure) -> str:
+        """PCO2 in the reader's unit; as typed where it was typed in that unit."""
+        if gas.paco2_mmHg is None:
+            return self.absent()
+        typed = gas.paco2_text or ""
+        return typed if typed.endswith(f" {self.reader.gas_unit}") else self.pressure(gas.paco2_mmHg)
+
+    def pressure(self, mmhg: float | None, *, sign: bool = False) -> str:
+        """A gas pressure in the reader's unit."""
+        return self.absent() if mmhg is None else formats.gas_pressure(mmhg, self.reader.gas_unit, sign=sign)
+
+    def absent(self) -> str:
+        """What stands where a value was not recorded."""
+        return self.tr(formats.ABSENT)
+
+    def gas(self, g: GasFigure) -> str:
+        """A gas with what is computed from it, on one line."""
+        site = g.site + (f" ({self.tr('assumed')})" if g.site_assumed else "")
+        parts = [f"{formats.wall(g.at, self.reader.zone)} {site}: pH {self.ph(g)}", f"PCO2 {self.paco2(g)}"]
+        if g.pao2_mmHg is not None:
+            parts.append(f"PO2 {self.pressure(g.pao2_mmHg)}")
+        if g.hco3_mmol_L is not None:
+            parts.append(f"HCO3 {formats.fixed(g.hco3_mmol_L, 1)} mmol/L")
+        elif g.hco3_calculated_mmol_L is not None:
+            parts.append(f"HCO3 {formats.fixed(g.hco3_calculated_mmol_L, 1)} mmol/L ({self.tr('calculated')})")
+        if g.sbe_mmol_L is not None:
+            parts.append(f"SBE {formats.signed(g.sbe_mmol_L, 1)} mmol/L")
+        if g.lactate_mmol_L is not None:
+            parts.append(f"lactate {formats.fixed(g.lactate_mmol_L, 1)} mmol/L")
+        if g.fio2 is not None:
+            parts.append(f"FiO2 {formats.fraction(g.fio2)}")
+        no_pf = self.why("P/F", g.reasons, "pf_mmHg")
+        parts.append(no_pf if g.pf_mmHg is None else f"P/F {self.pressure(g.pf_mmHg)}")
+        if g.aa_gradient_mmHg is not None:
+            parts.append(f"A-a {self.pressure(g.aa_gradient_mmHg)}")
+        parts += self.gas_marks(g)
+        return ", ".join(p for p in parts if p)
+
+    def gas_marks(self, g: GasFigure) -> list[str]:
+        """State and doubts of a gas, as words."""
+        marks = ((g.off_support, "off support"), (g.consistent is False, "does not agree with itself"),
+                 (g.doubt, "doubtful"), (g.corrected, "corrected"), (g.disputed, "disputed"))  # fmt: skip
+        state = [self.tr(g.state)] if g.state else []
+        return state + [self.tr(word) for holds, word in marks if holds]
+
+    def why(self, name: str, reasons: Reasons, field: str) -> str:
+        """An absent figure with its reason; empty where there is none."""
+        return f"{name} {self.tr('not known')} ({sentence(reasons[field], self.reader)})" if field in reasons else ""
+
+    def step(self, step: Step) -> str:
+        """One change: what, from, to."""
+        name = quantity_name(step.channel)
+        name = name if name[:2] == "pH" else name[0].upper() + name[1:]
+        if step.before is None and step.after is None:
+            return self.tr(_ANCHORS.get(step.channel, name))
+        after = self._amount(step.channel, step.after)
+        if step.before is None:
+            return f"{self.tr(name)} {after}"
+        before = self._amount(step.channel, step.before)
+        unit = after.rpartition(" ")[2]
+        if before.endswith(f" {unit}") and unit in ("cmH2O", "%", "L/min", "s"):
+            before = before.removesuffix(f" {unit}")
+        return f"{self.tr(name)} {before} {self.tr('to')} {after}"
+
+    def _amount(self, channel: str, value: float | str | None) -> str:
+        if value is None:
+            return self.tr("not known") if channel == "fio2" else self.absent()
+        if channel == "pressure_support" and not isinstance(value, str):
+            return f"{formats.trimmed(value)} cmH2O"
+        return formats.quantity(channel, value, self.reader.gas_unit)
+
+    def anchor(self, r: ResponseFigure) -> str:
+        """What an anchor was: its steps, those of one moment together."""
+        steps = [self.step(s) for s in r.steps if not (s.before is None and s.after is None)]
+        if r.anchor == "change":
+            return ", ".join(steps) or self.tr("Settings changed")
+        head = self.tr(_ANCHORS[r.anchor])
+        return f"{head}: {', '.join(steps)}" if steps else head
+
+    def verdict(self, r: ResponseFigure) -> str:
+        """The headline with the gas it rests on, by how much, after how long."""
+        judged = next((g for g in r.gases if g.at == r.headline_gas_at), None)
+        if judged is None:
+            why = " ".join(sentence(m, self.reader) for m in r.why)
+            return f"{self.tr(r.headline)}. {why}".rstrip(". ") + "."
+        text = f"{self.tr(r.headline)}: {self.deltas(judged)}"
+        return f"{text} ({self.arms(judged)})." if self.arms(judged) else f"{text}."
+
+    def deltas(self, g: JudgedGas) -> str:
+        """By how much a gas differs from the baseline, and when it was taken."""
+        parts = []
+        if g.delta_ph is not None:
+            parts.append(f"pH {formats.signed(g.delta_ph, 2)}")
+        if g.delta_paco2_mmHg is not None:
+            parts.append(f"PaCO2 {self.pressure(g.delta_paco2_mmHg, sign=True)}")
+        if g.delta_pf_mmHg is not None:
+            parts.append(f"P/F {self.pressure(g.delta_pf_mmHg, sign=True)}")
+        timing = {"early": self.tr("early"), "late": self.tr("late")}.get(g.timing, "")
+        when = f"{self.tr('after')} {formats.minutes(g.minutes)}{', ' + timing if timing else ''}"
+        state = f", {self.tr('gas')} {self.tr(g.state)}" if g.state else ""
+        return f"{', '.join(parts) or self.tr('no difference known')} {when}{state}"
+
+    def arms(self, g: JudgedGas) -> str:
+        """Both arms, each with its verdict."""
+        found = ((self.tr("CO2"), g.co2_arm), (self.tr("oxygen"), g.oxygen_arm))
+        return ", ".join(f"{name} {self.tr(verdict)}" for name, verdict in found if verdict)
+
+    def flag_head(self, f: FlagFigure) -> str:
+        """A flag's name with its tier, since when, and what became of it."""
+        from app.finding_names import marker_name
+
+        name = marker_name(f.marker, self.reader)
+        text = f"{self.tr(f.tier).upper()} {name}, {self.tr('since')} {formats.wall(f.since, self.reader.zone)}"
+        return text + self._fate(f)
+
+    def _fate(self, f: FlagFigure) -> str:
+        parts = []
+        if f.seen_at is not None:
+            by = f" {self.tr('by')} {f.seen_by}" if f.seen_by else ""
+            parts.append(f"{self.tr('seen')} {formats.clock(f.seen_at, self.reader.zone)}{by}")
+        if f.settled_at is not None:
+            by = f" {self.tr('by')} {f.settled_by}" if f.settled_by else ""
+            why = f" ({f.settled_why})" if f.settled_why else ""
+            parts.append(f"{self.tr('settled')} {formats.clock(f.settled_at, self.reader.zone)}{by}{why}")
+        elif f.ended_at is not None:
+            parts.append(f"{self.tr('no longer met since')} {formats.clock(f.ended_at, self.reader.zone)}")
+        if f.undone_by_correction:
+            parts.append(self.tr("undone by a correction"))
+        if f.outside_population:
+            parts.append(self.tr("outside its population"))
+        return "; " + ", ".join(parts) if parts else ""
+
+    def evidence(self, f: FlagFigure) -> str:
+        """Why the flag is met."""
+        return " ".join(sentence(m, self.reader) for m in f.evidence)
+
+    def certainty(self, f: FlagFigure) -> str:
+        """Where a marker comes from and how sure that is."""
+        return f"{f.source} [{self.tr(f.sure)}]"
+
+    def due(self, d: DueFigure) -> str:
+        """A due item: what, by when, its state and why."""
+        from app.finding_names import due_name
+
+        zone = self.reader.zone
+        state = {"overdue": self.tr("OVERDUE"), "awaiting result": self.tr("awaiting result")}.get(d.state, "")
+        head = f"{due_name(d.what, self.reader)} {self.tr('by')} {formats.wall(d.due_until, zone)}"
+        return f"{head}{', ' + state if state else ''}: {sentence(d.because, self.reader)}"
+
+    def score(self, name: str, s: ScoreFigure) -> str:
+        """A score with its bounds, when it was taken, and its caveats."""
+        shown = SCORE_NAMES.get(name, name)
+        if s.points is None and s.lowest is None:
+            return self.why(shown, s.reasons, "points") or f"{shown} {self.tr('not known')}"
+        if s.points is not None:
+            text = f"{shown} {formats.trimmed(s.points)}"
+        else:
+            low, high = formats.trimmed(s.lowest or 0.0), formats.trimmed(s.highest or 0.0)
+            names = ", ".join(quantity_name(m) for m in s.missing)
+            text = f"{shown} {self.tr('between')} {low} {self.tr('and')} {high} ({self.tr('missing')}: {names})"
+        if s.at is not None:
+            text += f" {self.tr('at')} {formats.wall(s.at, self.reader.zone)}"
+        if s.population == "outside":
+            text += f", {self.tr('outside its population')}"
+        return text + (f". {sentence(s.caveat, self.reader)}" if s.caveat else "")
+
+    def ratio(self, name: str, r: RatioFigure, *, is_pressure: bool = False, decimals: int = 0) -> str:
+        """P/F, S/F or ROX: the newest value, its slope with interval, and why not."""
+        if r.latest is None or r.at is None:
+            return self.why(name, r.reasons, "latest") or f"{name} {self.tr('not known')}"
+
+        def amount(value: float, *, sign: bool = False) -> str:
+            if is_pressure:
+                return self.pressure(value, sign=sign)
+            return (formats.signed if sign else formats.fixed)(value, decimals)
+
+        text = f"{name} {amount(r.latest)} {self.tr('at')} {formats.wall(r.at, self.reader.zone)}"
+        if r.slope_per_h is not None:
+            text += f", {self.tr('slope')} {amount(r.slope_per_h, sign=True)} {self.tr('per h')}"
+            if r.slope_low is not None and r.slope_high is not None:
+                text += f" ({amount(r.slope_low, sign=True)} {self.tr('to')} {amount(r.slope_high, sign=True)})"
+        return text + (f". {sentence(r.caveat, self.reader)}" if r.caveat else "")
+
+    def leak(self, leak: LeakFigure) -> str:
+        """Leak: its median, what is meant by it, and time over the limit."""
+        if leak.median_L_per_min is None:
+            return self.why(self.tr("Leak"), leak.reasons, "median_L_per_min") or self.tr("Leak not recorded")
+        text = f"{self.tr('Leak')} {formats.fixed(leak.median_L_per_min, 0)} L/min ({self.tr('median')}"
+        text += f", {leak.definition})" if leak.definition else f", {self.tr('definition not known')})"
+        if leak.minutes_over_limit is not None and leak.limit_L_per_min is not None:
+            text += (
+                f", {formats.minutes(leak.minutes_over_limit)} {self.tr('over')} "
+                f"{formats.fixed(leak.limit_L_per_min, 0)} L/min"
+            )
+        return text
+
+    def sentences(self, messages: Iterable[Message]) -> str:
+        """Messages in words, one after the other."""
+        return " ".join(sentence(m, self.reader) for m in messages)
+
+    def clock(self, at: Instant) -> str:
+        """The hour and minute."""
+        return formats.clock(at, self.reader.zone)
