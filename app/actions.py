@@ -6,7 +6,7 @@ them. The object that serves a menu carries out its deeds by methods named `do_K
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 from typing import Final
 
@@ -175,7 +175,7 @@ def keys_of(deed: Deed) -> str:
     return ", ".join(QKeySequence(k).toString(QKeySequence.SequenceFormat.NativeText) for k in deed.keys)
 
 
-def make_actions(window: QWidget, doers: Mapping[str, object]) -> dict[str, QAction]:
+def make_actions(window: QWidget, server_of: Callable[[str], object]) -> dict[str, QAction]:
     """One QAction for each deed, joined to the method of the object that serves its menu."""
     made = {}
     for deed in DEEDS:
@@ -186,7 +186,7 @@ def make_actions(window: QWidget, doers: Mapping[str, object]) -> dict[str, QAct
         action.setStatusTip(help_of(deed))
         action.setWhatsThis(help_of(deed))
         action.setCheckable(deed.checkable)
-        action.triggered.connect(getattr(doers[deed.menu], deed.slot))
+        action.triggered.connect(getattr(server_of(deed.menu), deed.slot))
         window.addAction(action)
         made[deed.key] = action
     return made

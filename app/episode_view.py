@@ -10,7 +10,8 @@ from app.chart.shapes import Bracket, Tick
 from app.chart.stack import PanelStack
 from app.episode.readout import Readout
 from app.episode.side import SideColumn
-from app.episode.stack_words import EpisodeOnScreen, stack_of
+from app.episode.stack_words import stack_of
+from app.episode_shown import EpisodeOnScreen
 from app.explain import Explainer
 from app.phrases import translate
 from app.theme import Theme

@@ -3,46 +3,26 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from zoneinfo import ZoneInfo
 
 import numpy as np
 
-from app.chart.shapes import Area, Band, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick, Trace
-from app.course import Course
+from app.chart.shapes import Area, Band, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick
+from app.episode_shown import EpisodeOnScreen
 from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.formats import clock
-from app.panels import Panel, PanelSet
+from app.panels import Panel
 from app.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
 from app.theme import state_word, verdict_of, verdict_word
 from app.ward.lane_words import anchor_name
-from core.judgement.policy import Policy
-from core.judgement.shapes import EpisodeFigures, ResponseFigure
+from core.judgement.shapes import ResponseFigure
 from core.record.channels import Group, by_group
-from core.record.episode import Episode
 from core.record.instant import HOUR, MINUTE, Instant
 
 RIBBON_HIGH = 25.0
 LONG = 36 * HOUR
 """An episode longer than this opens on its newest day; all of it is one key away."""
-
-
-@dataclass(frozen=True, slots=True)
-class EpisodeOnScreen:
-    """What the episode view knows of the episode in hand."""
-
-    record: Episode
-    figures: EpisodeFigures
-    course: Course
-    policy: Policy
-    panels: PanelSet
-    gas_unit: str
-
-    @property
-    def zone(self) -> str:
-        """The zone that its times are shown in."""
-        return self.figures.zone
 
 
 def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
@@ -169,12 +149,3 @@ def _response_words(r: ResponseFigure, zone: str) -> str:
     verdict = verdict_word(verdict_of(r.headline))
     text = translate("stack", "After {anchor} at {time}: {verdict}.")
     return text.format(anchor=anchor_name(r), time=clock(r.anchor_at, zone), verdict=verdict)
-
-
-def empty_traces(panel: PanelSpec) -> bool:
-    """Whether nothing was logged for any channel of a panel."""
-    return not any(_has_values(t) for t in panel.traces)
-
-
-def _has_values(trace: Trace) -> bool:
-    return bool(np.isfinite(trace.v).any())

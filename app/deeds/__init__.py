@@ -1,0 +1,28 @@
+"""What each action does, one object for each menu. They act on the window by its public methods alone."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from app.deeds.episode import EpisodeDeeds
+from app.deeds.file import FileDeeds
+from app.deeds.help import HelpDeeds
+from app.deeds.log import LogDeeds
+from app.deeds.view import ViewDeeds
+from app.deeds.ward import WardDeeds
+
+if TYPE_CHECKING:
+    from app.window import MainWindow
+
+
+class Doers:
+    """The objects that serve the menus, by menu."""
+
+    def __init__(self, window: MainWindow) -> None:
+        self.file, self.log, self.ward = FileDeeds(window), LogDeeds(window), WardDeeds(window)
+        self.episode, self.view, self.help = EpisodeDeeds(window), ViewDeeds(window), HelpDeeds(window)
+
+    def of(self, menu: str) -> object:
+        """The object that serves a menu."""
+        found: object = getattr(self, menu)
+        return found

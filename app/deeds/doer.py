@@ -1,0 +1,34 @@
+"""What the objects that carry out actions share: the window they act on."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QObject
+
+if TYPE_CHECKING:
+    from app.pages import Pages
+    from app.session import SessionModel
+    from app.window import MainWindow
+
+
+class Doer(QObject):
+    """Belongs to a window and ends with it."""
+
+    def __init__(self, window: MainWindow) -> None:
+        super().__init__(window)
+        self.window = window
+
+    @property
+    def model(self) -> SessionModel:
+        """The session; asked for only where a store is open."""
+        if self.window.model is None:
+            raise RuntimeError("no store is open: this action is greyed then")
+        return self.window.model
+
+    @property
+    def pages(self) -> Pages:
+        """The pages; there only where a store is open."""
+        if self.window.pages is None:
+            raise RuntimeError("no store is open: this action is greyed then")
+        return self.window.pages

@@ -1,0 +1,71 @@
+"""The episode in hand: opening it, going through the others, its panels, moments on its clock."""
+
+from __future__ import annotations
+
+from app.deeds.doer import Doer
+from app.operations import panel as panel_operations
+from app.operations.outcome import Outcome
+from app.panels import PanelSet, to_json
+
+
+class EpisodeDeeds(Doer):
+    """Serves the menu Episode."""
+
+    def do_show_episode(self) -> None:
+        """Ribbon, panels, flags, due items and levers of the selected episode."""
+        self.window.show_page("episode")
+
+    def do_next_episode(self) -> None:
+        """The next in the ward's order."""
+        self._step(1)
+
+    def do_previous_episode(self) -> None:
+        """The one before it."""
+        self._step(-1)
+
+    def _step(self, by: int) -> None:
+        keys = self.pages.ward.keys()
+        key = self.model.session.selection
+        if key in keys:
+            self.model.select(keys[(keys.index(key) + by) % len(keys)])
+
+    def do_panels(self) -> None:
+        """Add, name, fill, order and remove panels."""
+        from app.dialogs.panel_editor import PanelEditor
+
+        feed = self.window.episode_feed
+        if feed is not None:
+            self._editor = PanelEditor(feed.panels(), feed.family(), self.window.theme, self.window)
+            self._editor.kept.connect(self.keep_panels)
+            self._editor.open()
+
+    def keep_panels(self, panels: PanelSet | None) -> None:
+        """Keep the user's panels; None goes back to the shipped ones."""
+        feed = self.window.episode_feed
+        if feed is not None:
+            text = None if panels is None else to_json(panels)
+            layout = panel_operations.Layout(f"panels.{feed.family()}", text)
+            self.model.ask(panel_operations.keep, layout, done=self._panels_kept)
+
+    def _panels_kept(self, outcome: Outcome[panel_operations.Layout]) -> None:  # noqa: ARG002
+        self.model.layout_changed()
+
+    def do_go_start(self) -> None:
+        """Show the start of support."""
+        self.window.show_page("episode")
+        self.pages.episode.stack.go_home()
+
+    def do_go_now(self) -> None:
+        """Show the newest hours."""
+        self.window.show_page("episode")
+        self.pages.episode.stack.go_now()
+
+    def do_next_anchor(self) -> None:
+        """Crosshair on the next change."""
+        self.window.show_page("episode")
+        self.pages.episode.go_to_anchor(1)
+
+    def do_previous_anchor(self) -> None:
+        """Crosshair on the change before."""
+        self.window.show_page("episode")
+        self.pages.episode.go_to_anchor(-1)

@@ -1,0 +1,172 @@
+"""Stores, files, prints and the person."""
+
+from __future__ import annotations
+
+import shutil
+import tempfile
+from dataclasses import dataclass
+from functools import partial
+from pathlib import Path
+
+from PySide6.QtWidgets import QDialog, QFileDialog, QInputDialog, QLineEdit
+
+from app.clock import REAL, running_from
+from app.deeds.doer import Doer
+from app.dialogs.sign_in import SignInDialog
+from app.local_zone import local_zone
+from app.runner import Opener, Runner
+from app.session import Session, SessionModel
+from storage.store import Store
+
+
+@dataclass(frozen=True, slots=True)
+class _Opening:
+    path: Path
+    passphrase: str | None
+    create: bool
+
+
+class FileDeeds(Doer):
+    """Serves the menu File."""
+
+    _sample: Path | None = None
+    _last: _Opening | None = None
+    _then_take_in = False
+
+    # stores
+
+    def do_new_store(self) -> None:
+        """Ask where, make an empty store, open it."""
+        chosen, _ = QFileDialog.getSaveFileName(self.window, self.tr("New store"), str(_usual_folder() / "ward.luffmark"),
+                                                self.tr("Stores (*.luffmark)"))  # fmt: skip
+        if chosen:
+            self.open_path(Path(chosen), create=True)
+
+    def do_open_store(self) -> None:
+        """Ask which, open it."""
+        chosen, _ = QFileDialog.getOpenFileName(self.window, self.tr("Open store"), str(_usual_folder()),
+                                                self.tr("Stores (*.luffmark);;All files (*)"))  # fmt: skip
+        if chosen:
+            self.open_path(Path(chosen))
+
+    def open_recent(self, path: str) -> None:
+        """Open a store of the list of recent ones."""
+        self.open_path(Path(path))
+
+    def open_path(self, path: Path, *, passphrase: str | None = None, create: bool = False) -> None:
+        """Open a store, or make it first."""
+        self._last = _Opening(path, passphrase, create)
+        opener: Opener = partial(_create if create else _open, path, passphrase, self.window.preferences.person)
+        session = Session(path, zone=local_zone(), clock=REAL, person=self.window.preferences.person)
+        self.window.prefer(**{"recent_stores": self.window.preferences.with_store(str(path)).recent_stores})
+        self.show(session, opener)
+
+    def do_sample_shift(self) -> None:
+        """Open the invented night in a throw-away store, at a pretended moment late in it."""
+        from app import demo
+
+        self.forget_sample()
+        self._sample = Path(tempfile.mkdtemp(prefix="luffmark-sample-"))
+        session = Session(self._sample / demo.STORE_NAME, zone=demo.ZONE, clock=running_from(demo.demo_now()),
+                          person=demo.BY, is_demo=True)  # fmt: skip
+        self.show(session, partial(_make_sample, self._sample))
+
+    def forget_sample(self) -> None:
+        """Throw the sample's store away; its session must be closed."""
+        if self._sample is not None:
+            shutil.rmtree(self._sample, ignore_errors=True)
+            self._sample = None
+
+    def show(self, session: Session, opener: Opener) -> None:
+        """Show a session whose store the worker opens."""
+        self.window.close_model()
+        self.window.show_model(SessionModel(session, Runner(opener), self.window))
+
+    def ask_passphrase(self) -> None:
+        """The store is encrypted: ask, and open it again."""
+        last = self._last
+        if last is None:
+            return
+        text, given = QInputDialog.getText(self.window, self.tr("Passphrase"), self.tr("Passphrase of {store}").format(
+            store=last.path.name), QLineEdit.EchoMode.Password)  # fmt: skip
+        if given and text:
+            self.open_path(last.path, passphrase=text)
+        else:
+            self.window.close_model()
+            self.window.show_first_page()
+
+    # files
+
+    def do_take_in(self) -> None:
+        """Ask which file, show what it holds, take it in when the person says so."""
+        if self.window.model is None:
+            self.do_new_store()
+            if self.window.model is None:
+                return
+        chosen, _ = QFileDialog.getOpenFileName(self.window, self.tr("Take in a file"), str(Path.home()),
+                                                self.tr("Log files (*.csv);;All files (*)"))  # fmt: skip
+        if chosen:
+            self.take_in(Path(chosen))
+
+    def take_in(self, path: Path) -> QDialog:
+        """Show what a file holds; the dialog takes it in."""
+        from app.dialogs.intake import IntakeDialog
+
+        dialog = IntakeDialog(self.model, path, self.window.reader, self.window.theme, self.window)
+        dialog.open()
+        return dialog
+
+    def do_save_handover(self) -> None:
+        """Ask where, write the handover sheet as PDF."""
+        chosen, _ = QFileDialog.getSaveFileName(self.window, self.tr("Save handover"), str(Path.home() / "handover.pdf"),
+                                                self.tr("PDF (*.pdf)"))  # fmt: skip
+        if chosen:
+            self.window.doers.ward.save_handover(Path(chosen))
+
+    def do_save_picture(self) -> None:
+        """Ask where, save what the window shows."""
+        chosen, _ = QFileDialog.getSaveFileName(self.window, self.tr("Save picture"), str(Path.home() / "luffmark.png"),
+                                                self.tr("PNG (*.png)"))  # fmt: skip
+        if chosen and not self.window.grab().save(chosen):
+            self.window.say(self.tr("{path} could not be written.").format(path=chosen))
+
+    # person
+
+    def do_sign_in(self) -> None:
+        """Ask for initials."""
+        dialog = SignInDialog(self.model.session.person, self.window.theme, self.window)
+        if dialog.exec() == QDialog.DialogCode.Accepted:
+            self.become(dialog.person)
+        dialog.deleteLater()
+
+    def become(self, person: str) -> None:
+        """Log as a person from now on."""
+        self.model.set_person(person)
+        if not self.model.session.is_demo:
+            self.window.prefer(person=person)
+
+    def do_quit(self) -> None:
+        """Close the window."""
+        self.window.close()
+
+
+def _open(path: Path, passphrase: str | None, _by: str) -> Store:
+    return Store.open(path, passphrase=passphrase)
+
+
+def _create(path: Path, passphrase: str | None, by: str) -> Store:
+    return Store.create(path, passphrase=passphrase, now=REAL.now(), by=by)
+
+
+def _make_sample(folder: Path) -> Store:
+    from app import demo
+
+    return Store.open(demo.make_demo_store(folder))
+
+
+def _usual_folder() -> Path:
+    from platformdirs import user_data_path
+
+    folder = user_data_path("luffmark", appauthor=False)
+    folder.mkdir(parents=True, exist_ok=True)
+    return folder

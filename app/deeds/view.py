@@ -1,0 +1,83 @@
+"""Looking: explanations, tables, look, text size, units."""
+
+from __future__ import annotations
+
+from PySide6.QtWidgets import QApplication
+
+from app.deeds.doer import Doer
+from app.explain import Explainer, Explanation
+from app.fact import Fact
+from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, ResponseFigure
+
+
+class ViewDeeds(Doer):
+    """Serves the menu View."""
+
+    def do_explain(self) -> None:
+        """Explain what has the focus; without one, the strongest thing that the page shows."""
+        found = self._of_focus() or self._of_page()
+        if found is not None:
+            self.explain(found)
+
+    def explain(self, explanation: Explanation) -> None:
+        """Show an explanation."""
+        from app.explain_dialog import ExplainDialog
+
+        ExplainDialog(explanation, self.window.theme, self.window).open()
+
+    def _of_focus(self) -> Explanation | None:
+        widget = QApplication.focusWidget()
+        while widget is not None:
+            if isinstance(widget, Fact):
+                return widget.explanation
+            widget = widget.parentWidget()
+        return None
+
+    def _of_page(self) -> Explanation | None:
+        if self.pages.name == "episode":
+            return next((f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None)
+        item = self.pages.ward.lanes.selected_item
+        if item is not None:
+            return self.of_payload(item.payload)
+        feed, key = self.window.feed, self.pages.ward.lanes.selected_key
+        answer = feed.answers.get(key) if feed is not None else None
+        if answer is None:
+            return None
+        figures = answer.figures
+        return self.of_payload(next(iter((*figures.flags, *reversed(figures.responses), *reversed(figures.gases))), None))
+
+    def of_payload(self, payload: object) -> Explanation | None:
+        """The explanation of a figure."""
+        explainer = Explainer(self.model.session.policy, self.window.reader)
+        if isinstance(payload, FlagFigure):
+            return explainer.flag(payload)
+        if isinstance(payload, ResponseFigure):
+            return explainer.response(payload)
+        if isinstance(payload, GasFigure):
+            return explainer.gas(payload)
+        return explainer.due(payload) if isinstance(payload, DueFigure) else None
+
+    def do_table(self) -> None:
+        """The page's chart as a table and in words."""
+        from app.dialogs.table import TableDialog
+        from app.tables import table_of_page
+
+        table = table_of_page(self.window)
+        if table is not None:
+            TableDialog(table, self.window.theme, self.window).open()
+
+    def do_dark(self) -> None:
+        """Dark look, or light again."""
+        self.window.prefer(theme="light" if self.window.preferences.theme == "dark" else "dark")
+
+    def do_text_larger(self) -> None:
+        """One step larger."""
+        self.window.prefer(text_scale=self.window.preferences.with_scale_step(1).text_scale)
+
+    def do_text_smaller(self) -> None:
+        """One step smaller."""
+        self.window.prefer(text_scale=self.window.preferences.with_scale_step(-1).text_scale)
+
+    def do_pressure_unit(self) -> None:
+        """kPa, or mmHg again."""
+        self.window.prefer(gas_unit="mmHg" if self.window.preferences.gas_unit == "kPa" else "kPa")

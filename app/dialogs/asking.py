@@ -1,0 +1,54 @@
+"""A small form: labelled fields, a line that says what is wrong, and two buttons."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QDialog, QDialogButtonBox, QFormLayout, QLabel, QVBoxLayout, QWidget
+
+from app.theme import Theme
+
+
+class AskingDialog(QDialog):
+    """Fields go into `form`. `refuse` says what is wrong and keeps the dialog open."""
+
+    def __init__(self, title: str, accept_word: str, theme: Theme, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.theme = theme
+        self.setWindowTitle(title)
+        self.form = QFormLayout()
+        self.form.setSpacing(theme.px(8))
+        self.form.setFieldGrowthPolicy(QFormLayout.FieldGrowthPolicy.ExpandingFieldsGrow)
+        self.form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.wrong = QLabel()
+        self.wrong.setWordWrap(True)
+        self.wrong.setTextFormat(Qt.TextFormat.PlainText)
+        self.wrong.setProperty("role", "strong")
+        self.buttons = QDialogButtonBox()
+        self.go = self.buttons.addButton(accept_word, QDialogButtonBox.ButtonRole.AcceptRole)
+        self.go.setProperty("role", "primary")
+        self.buttons.addButton(self.tr("Leave"), QDialogButtonBox.ButtonRole.RejectRole)
+        self.buttons.accepted.connect(self.submit)
+        self.buttons.rejected.connect(self.reject)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(theme.px(20), theme.px(16), theme.px(20), theme.px(16))
+        column.setSpacing(theme.px(10))
+        self.body = QVBoxLayout()
+        column.addLayout(self.body)
+        column.addLayout(self.form)
+        column.addWidget(self.wrong)
+        column.addStretch(1)
+        column.addWidget(self.buttons)
+
+    def field(self, label: str, widget: QWidget) -> None:
+        """A field with its label; the label is its accessible name."""
+        widget.setAccessibleName(label)
+        self.form.addRow(label, widget)
+
+    def submit(self) -> None:
+        """What the accepting button does; the usual one closes the dialog."""
+        self.accept()
+
+    def refuse(self, text: str) -> None:
+        """Say what is wrong."""
+        self.wrong.setText(text)
+        self.go.setEnabled(True)

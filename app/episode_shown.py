@@ -1,0 +1,28 @@
+"""What the episode view knows of the episode in hand. No Qt, no drawing: the ward shows before charts load."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from app.course import Course
+from app.panels import PanelSet
+from core.judgement.policy import Policy
+from core.judgement.shapes import EpisodeFigures
+from core.record.episode import Episode
+
+
+@dataclass(frozen=True, slots=True)
+class EpisodeOnScreen:
+    """One episode, its figures and course, by which policy, in which panels, in which unit."""
+
+    record: Episode
+    figures: EpisodeFigures
+    course: Course
+    policy: Policy
+    panels: PanelSet
+    gas_unit: str
+
+    @property
+    def zone(self) -> str:
+        """The zone that its times are shown in."""
+        return self.figures.zone

@@ -1,0 +1,87 @@
+"""The pages of the window, each made when it is first needed: charts load slowly and the ward must show first."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import QStackedWidget, QWidget
+
+from app.theme import Theme
+from app.ward_view import WardView
+
+if TYPE_CHECKING:
+    from app.compare_view import CompareView
+    from app.episode_view import EpisodeView
+    from app.handover_view import HandoverView
+
+
+class Pages(QStackedWidget):
+    """Ward, episode, compare and handover. `made(name)` when a page has come to be and wants its wires."""
+
+    made = Signal(str)
+
+    def __init__(self, theme: Theme) -> None:
+        super().__init__()
+        self._theme = theme
+        self.ward = WardView(theme)
+        self.addWidget(self.ward)
+        self._episode: EpisodeView | None = None
+        self._compare: CompareView | None = None
+        self._handover: HandoverView | None = None
+
+    @property
+    def episode(self) -> EpisodeView:
+        """The episode view."""
+        if self._episode is None:
+            from app.episode_view import EpisodeView
+
+            self._episode = EpisodeView(self._theme)
+            self._added(self._episode, "episode")
+        return self._episode
+
+    @property
+    def compare(self) -> CompareView:
+        """The compare view."""
+        if self._compare is None:
+            from app.compare_view import CompareView
+
+            self._compare = CompareView(self._theme)
+            self._added(self._compare, "compare")
+        return self._compare
+
+    @property
+    def handover(self) -> HandoverView:
+        """The handover view."""
+        if self._handover is None:
+            from app.handover_view import HandoverView
+
+            self._handover = HandoverView(self._theme)
+            self._added(self._handover, "handover")
+        return self._handover
+
+    @property
+    def name(self) -> str:
+        """The name of the page that shows."""
+        names = {self.ward: "ward", self._episode: "episode", self._compare: "compare", self._handover: "handover"}
+        return names.get(self.currentWidget(), "")  # type: ignore[call-overload, no-any-return]
+
+    def page(self, name: str) -> QWidget:
+        """The page of that name."""
+        found: QWidget = getattr(self, name)
+        return found
+
+    def has(self, name: str) -> bool:
+        """Whether the page has been made."""
+        return name == "ward" or getattr(self, f"_{name}") is not None
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size in every page that there is."""
+        self._theme = theme
+        for name in ("ward", "episode", "compare", "handover"):
+            if self.has(name):
+                self.page(name).set_theme(theme)  # type: ignore[attr-defined]
+
+    def _added(self, page: QWidget, name: str) -> None:
+        self.addWidget(page)
+        self.made.emit(name)
