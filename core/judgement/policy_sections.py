@@ -120,18 +120,50 @@ class Levers(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     review_ipap_cmH2O: Limit
     review_epap_cmH2O: Limit
     vt_ml_per_kg: Limit
+    port_clears_from_cmH2O: Limit
+    mask_share_low: Limit
+    rate_in_reach_per_min: Limit
+    review_ti_s: Limit
+
+
+class PressureLimit(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
+    """A gas pressure in both printed forms, e.g. 45 mmHg and 6.0 kPa. The kPa form decides, in tenths."""
+
+    mmHg: float
+    kpa: float
+
+
+Population = Literal[
+    "any",
+    "on support",
+    "acute hypercapnia",
+    "hypercapnic copd",
+    "hypoxaemic, not hypercapnic",
+    "moderate ards",
+    "hypercapnic risk",
+    "not neuromuscular or obesity hypoventilation",
+]
+"""Whom a marker was validated in, or is meant for; `markers.population` decides who is inside."""
 
 
 class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
-    """One marker: whether it is on, how strong, in which group, whom it was validated in, and its numbers."""
+    """One marker: whether it is on, how strong, in which group, whom it was validated in, and its numbers.
+
+    `outside`: what happens outside the population: silent, or a remark that says so. `gap_min`: met again within
+    so many minutes is the same flag. `limits` are plain numbers (their names carry the unit), `pressures` gas
+    pressures in both forms.
+    """
 
     on: bool = True
     tier: Tier
     group: str
-    population: str
+    population: Population
+    outside: Literal["silent", "remark"] = "silent"
+    gap_min: float = 0.0
     source: str
     sure: Sure
     limits: dict[str, float] = {}
+    pressures: dict[str, PressureLimit] = {}
 
 
 class DueRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):

@@ -39,7 +39,8 @@ def _profile(simulated: SimulatedEpisode) -> Mapping[str, str]:
     return {
         "indication": person.indication, "sex": person.sex, "height": f"{person.height:g}",
         "weight": f"{patient.weight:g}", "age": f"{patient.age:g}",
-        "leak_definition": simulated.case.script.leak_definition, "target_spo2_low": f"{person.target[0]:g}", "target_spo2_high": f"{person.target[1]:g}",
+        "target_spo2_low": f"{person.target[0]:g}", "target_spo2_high": f"{person.target[1]:g}",
+        "leak_definition": simulated.case.script.leak_definition,
     }  # fmt: skip
 
 

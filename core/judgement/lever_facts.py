@@ -1,0 +1,102 @@
+"""What the levers look at: settings in force, the newest gas, SpO2, rate, leak, tidal volume, events."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+from math import isnan
+
+from core.judgement import arms
+from core.judgement.context import Context
+from core.judgement.leak_trend import leak_figure
+from core.judgement.shapes import GasFigure, LeakFigure
+from core.judgement.trend import channel_trend, span_start
+from core.judgement.vitals_near import Found, VitalsNear
+from core.record.instant import DAY, HOUR, Instant
+from core.record.message import Message
+from core.record.settings import ROOM_AIR, Settings
+
+DECIDES = Message("lever.qualified_person_decides")
+UNREST = ("secretions", "vomiting", "agitation")
+DEPRESSANTS = ("sedative", "opioid", "sedation")
+
+
+@dataclass(frozen=True)
+class Facts:
+    """Facts of one context as of its moment, found when asked for."""
+
+    ctx: Context
+
+    @cached_property
+    def now(self) -> Settings:
+        return self.ctx.settings.at(self.ctx.as_of)
+
+    @cached_property
+    def gas(self) -> GasFigure | None:
+        """The newest gas on support that stands for arterial in pH and PCO2."""
+        return next((g for g in reversed(self.ctx.gases) if g.site != "venous" and not g.off_support), None)
+
+    @property
+    def acidotic(self) -> bool:
+        """The newest gas shows acute hypercapnia."""
+        return self.gas is not None and arms.acute_hypercapnia(self.gas, self.ctx.policy)
+
+    @property
+    def hypoxaemic(self) -> bool:
+        """The newest gas with a P/F is at or below 300, or SpO2 is below its range."""
+        with_pf = next((g for g in reversed(self.ctx.gases) if g.pf_mmHg is not None), None)
+        low = self.spo2 is not None and self.spo2.value < self.ctx.target.low
+        return low or (with_pf is not None and arms.hypoxaemia(with_pf, self.ctx.policy))
+
+    @cached_property
+    def _vitals(self) -> VitalsNear:
+        return VitalsNear(self.ctx.episode, self.ctx.policy)
+
+    @cached_property
+    def spo2(self) -> Found | None:
+        return self._vitals.spo2(self.ctx.as_of, 0, self.ctx.as_of)
+
+    @cached_property
+    def own_rate(self) -> Found | None:
+        return self._vitals.rate(self.ctx.as_of, 0, self.ctx.as_of)
+
+    @cached_property
+    def leak(self) -> LeakFigure:
+        found = self.ctx.leak
+        return leak_figure(self.ctx) if found.latest_at is None and not found.reasons else found
+
+    @property
+    def leak_over(self) -> bool:
+        limit, latest = self.leak.limit_L_per_min, self.leak.latest_L_per_min
+        return self.leak.over_since is not None or (limit is not None and latest is not None and latest > limit)
+
+    @cached_property
+    def tidal_volume_per_kg(self) -> float | None:
+        return channel_trend(self.ctx, "vte_per_kg").latest
+
+    @property
+    def oxygen_given(self) -> bool:
+        return self.now.fio2 > ROOM_AIR if not isnan(self.now.fio2) else self.now.o2_flow > 0
+
+    @cached_property
+    def mask_share(self) -> tuple[float, float] | None:
+        """Hours on the mask, of the hours since the start or of the last 24; None where the start is not known."""
+        support, as_of = self.ctx.support, self.ctx.as_of
+        if support.start is None or not support.start_recorded or support.start >= as_of:
+            return None
+        since = max(support.start, as_of - DAY)
+        return support.hours_on_mask(since, as_of), (as_of - since) / HOUR
+
+    def recent_events(self) -> list[tuple[str, str, Instant]]:
+        """Unrest and sedation logged within the trend's span: channel, text, moment; newest first."""
+        start, found = span_start(self.ctx), []
+        for channel in (*UNREST, "drug"):
+            words = self.ctx.episode.text(channel)
+            for t, text in zip(words.t.tolist(), words.v, strict=True):
+                depresses = any(d in text.casefold() for d in DEPRESSANTS)
+                if t >= start and (channel != "drug" or depresses):
+                    found.append((channel, text, t))
+        comfort = self.ctx.episode.text("comfort")
+        if len(comfort) and comfort.v[-1] in ("poor", "not tolerated") and int(comfort.t[-1]) >= start:
+            found.append(("comfort", comfort.v[-1], int(comfort.t[-1])))
+        return sorted(found, key=lambda row: -row[2])
