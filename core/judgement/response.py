@@ -220,10 +220,13 @@ class _Judge:
     ) -> Oxygenation:
         high = min(high, self.ctx.as_of)
         rate = self.vitals.rate
-        rr_before = rate(base.at, 0, max(first_at, base.at)) if base is not None else None
-        before_at = first_at if base is None or base.at <= first_at else base.at
+        before_at = first_at if base is None else max(first_at, base.at)
+        rr_before = rate(base.at, 0, before_at) if base is not None else None
+        spo2_before = self.vitals.spo2(before_at, 0, before_at)
+        if spo2_before is None and base is not None:
+            spo2_before = self.vitals.spo2(base.at, 0, before_at)
         return Oxygenation(
-            spo2_before=self.vitals.spo2(before_at, 0, before_at),
+            spo2_before=spo2_before,
             spo2_after=self.vitals.spo2(gas.at, low, high),
             rr_before=rr_before or rate(first_at, 0, first_at),
             rr_after=rate(gas.at, low, high),
