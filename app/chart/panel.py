@@ -5,13 +5,14 @@ from collections.abc import Sequence
 import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPolygonF
+from PySide6.QtWidgets import QGraphicsItem
 
 from app.chart.brackets import BracketStrip
 from app.chart.curve import DrawnTrace
 from app.chart.end_labels import EndLabel, draw_end_labels, label_width
 from app.chart.marks import hatch, solid_pen, spot
 from app.chart.panel_header import PanelHeader
-from app.chart.row import ClockRow, Margins, visible
+from app.chart.row import ClockRow, Margins, RowItem, visible
 from app.chart.shapes import Area, Look, PanelSpec, Reading, Scale, Span
 from app.chart.time_ticks import ClockMark
 from app.chart.value_ticks import value_ticks, value_word
@@ -32,8 +33,8 @@ class PanelRow(ClockRow):
     header: PanelHeader | None = None
     window: tuple[int, int] = (0, 1)
 
-    def __init__(self, spec: PanelSpec, theme: Theme, origin: int) -> None:
-        super().__init__(spec.title, theme, origin)
+    def __init__(self, spec: PanelSpec, theme: Theme, origin: int, item: RowItem) -> None:
+        super().__init__(spec.title, theme, origin, item)
         self.spec, self.pen_scale = spec, 1.0
         first = spec.scales[0]
         air = (first.high - first.low) * _AIR
@@ -41,7 +42,7 @@ class PanelRow(ClockRow):
         self.traces = [self._drawn(i) for i in range(len(spec.traces))]
         for drawn in self.traces:
             for curve in drawn.curves:
-                self.item.addItem(curve, ignoreBounds=True)
+                self.view.addItem(curve, ignoreBounds=True)
         self.brackets = BracketStrip(self, spec.brackets) if spec.brackets else None
         self.header = PanelHeader(self)
 
@@ -60,6 +61,16 @@ class PanelRow(ClockRow):
             return 1.0, 0.0
         gain = (first.high - first.low) / (scale.high - scale.low)
         return gain, first.low - scale.low * gain
+
+    def leave(self) -> None:
+        for drawn in self.traces:
+            for curve in drawn.curves:
+                self.view.removeItem(curve)
+        super().leave()
+
+    def layers(self) -> list[QGraphicsItem]:
+        strips = [strip.layer for strip in (self.brackets, self.header) if strip is not None]
+        return [*super().layers(), *strips]
 
     # sizes
 

@@ -11,11 +11,12 @@ from itertools import groupby, pairwise
 import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
+from PySide6.QtWidgets import QGraphicsItem
 
 from app.chart.end_labels import EndLabel, draw_end_labels, label_width
 from app.chart.marks import hatch, solid_pen, whole_or_none
 from app.chart.panel import PanelRow
-from app.chart.row import FRONT, Frame, Layer, visible
+from app.chart.row import FRONT, Frame, Layer, RowItem, visible
 from app.chart.shapes import PanelSpec, RibbonSpec, RibbonStep, Scale, Tick, Trace
 from app.chart.value_ticks import value_word
 from app.theme import Theme
@@ -29,14 +30,17 @@ class RibbonRow(PanelRow):
 
     strip: Layer | None = None
 
-    def __init__(self, ribbon: RibbonSpec, theme: Theme, origin: int) -> None:
+    def __init__(self, ribbon: RibbonSpec, theme: Theme, origin: int, item: RowItem) -> None:
         scale = Scale(ribbon.unit, 0.0, ribbon.high, 0)
-        super().__init__(PanelSpec("ribbon", ribbon.title, (), (scale,)), theme, origin)
+        super().__init__(PanelSpec("ribbon", ribbon.title, (), (scale,)), theme, origin, item)
         self.ribbon = ribbon
         self.steps = tuple(sorted(ribbon.steps, key=lambda step: step.start))
         self._starts = np.array([step.start for step in self.steps], np.int64)
         self.breaks = ribbon.breaks
         self.strip = Layer(self.item, FRONT, self._strip_area, self._draw_strip, clipped=True)
+
+    def layers(self) -> list[QGraphicsItem]:
+        return super().layers() + ([self.strip] if self.strip else [])
 
     def top_height(self) -> int:
         return self.theme.px(28 + 20)

@@ -1,7 +1,7 @@
-"""One row of the stack: a pyqtgraph PlotItem stripped to its view, and layers drawn in the view's pixels.
+"""One row of the stack: a pyqtgraph view in a card, and layers drawn in the view's pixels.
 
-The axes, menus and ranges of pyqtgraph are off: the row draws its own card, labels and marks, so that text
-lies on whole pixels and a pan step costs as little as possible.
+Axes, menus and automatic ranges of pyqtgraph are left out: the row draws its own card, labels and marks, so
+that text lies on whole pixels and a pan step costs as little as possible.
 """
 
 from collections.abc import Callable, Sequence
@@ -10,9 +10,16 @@ from typing import Any
 
 import numpy as np
 import pyqtgraph as pg
+import shiboken6
 from PySide6.QtCore import QPointF, QRectF, Qt, Signal
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter
-from PySide6.QtWidgets import QGraphicsItem, QGraphicsSceneWheelEvent, QStyleOptionGraphicsItem, QWidget
+from PySide6.QtWidgets import (
+    QGraphicsGridLayout,
+    QGraphicsItem,
+    QGraphicsSceneWheelEvent,
+    QStyleOptionGraphicsItem,
+    QWidget,
+)
 
 from app.chart.marks import draw_card
 from app.chart.shapes import MICROSECONDS, Reading, Span
@@ -143,22 +150,31 @@ class CrossLine(QGraphicsItem):
         painter.fillRect(self.boundingRect(), self._colour)
 
 
+class RowItem(pg.GraphicsWidget):  # type: ignore[misc]  # pyqtgraph has no types
+    """A view with margins around it; a stack keeps it and puts one row after the other into it.
+
+    A PlotItem would bring some forty hidden widgets for menus we do not use. The item outlives its rows,
+    because views that Python's collector destroys at a time of its own take Qt down with them.
+    """
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.view = ClockView()
+        self.grid = QGraphicsGridLayout(self)
+        self.grid.setSpacing(0)
+        self.grid.addItem(self.view, 0, 0)
+
+
 class ClockRow:
     """A card with a title and a view on the stack's clock; panels, ribbon and events build on it."""
 
-    def __init__(self, title: str, theme: Theme, origin: int) -> None:
+    def __init__(self, title: str, theme: Theme, origin: int, item: RowItem) -> None:
         self.title, self.theme, self.origin = title, theme, origin
         self.margins = Margins(0, 0, 0)
         self.marks: Sequence[ClockMark] = ()
         self.breaks: tuple[Span, ...] = ()
         self.now: int | None = None
-        self.view = ClockView()
-        self.item = pg.PlotItem(viewBox=self.view, enableMenu=False)
-        self.item.hideButtons()
-        for side in ("left", "bottom", "right", "top"):
-            self.item.hideAxis(side)
-            self.item.getAxis(side).unlinkFromView()
-        self.view.setZValue(0)
+        self.item, self.view = item, item.view
         self.card = Layer(self.item, -1e6, self._whole, self._draw_card)
         self.gutter = Layer(self.item, FRONT, self._right_side, self._draw_gutter)
         self.back = Layer(self.view, BACK, self._view_rect, self._draw_back)
@@ -167,6 +183,18 @@ class ClockRow:
         self.crossed: float | None = None
         self.view.sigResized.connect(self._view_resized)
         self.item.geometryChanged.connect(self._item_resized)
+
+    def leave(self) -> None:
+        """Takes everything of this row out of its item, which the next row will use."""
+        self.view.sigResized.disconnect(self._view_resized)
+        self.item.geometryChanged.disconnect(self._item_resized)
+        for layer in self.layers():
+            self.item.scene().removeItem(layer)
+            shiboken6.delete(layer)  # else it stays in memory for as long as the view does
+
+    def layers(self) -> list[QGraphicsItem]:
+        """What this row has put upon its item and view."""
+        return [self.card, self.gutter, self.back, self.front, self.cross]
 
     # sizes
 
@@ -179,7 +207,7 @@ class ClockRow:
 
     def set_margins(self, margins: Margins) -> None:
         self.margins = margins
-        self.item.layout.setContentsMargins(margins.left, self.top_height(), margins.right, self.foot_height())
+        self.item.grid.setContentsMargins(margins.left, self.top_height(), margins.right, self.foot_height())
 
     def gutter_wanted(self) -> int:
         """Pixels the labels at the right end need."""

@@ -5,11 +5,11 @@ from collections.abc import Sequence
 import pyqtgraph as pg
 from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
 from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QResizeEvent
-from PySide6.QtWidgets import QWidget
+from PySide6.QtWidgets import QGraphicsGridLayout, QWidget
 
 from app.chart.panel import PanelRow
 from app.chart.ribbon import RibbonRow
-from app.chart.row import ClockRow, Margins
+from app.chart.row import ClockRow, Margins, RowItem
 from app.chart.shapes import MICROSECONDS, Bracket, Reading, RibbonStep, StackSpec, Tick
 from app.chart.time_axis import EventRow, TimeAxisRow
 from app.chart.time_ticks import MINUTE, date_word, time_ticks
@@ -40,8 +40,10 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         self._window = (0, 1)
         self._reduced = False
         self._margins = Margins(0, 0, 0)
-        self.grid = pg.GraphicsLayout()
-        self.setCentralWidget(self.grid)
+        self._items: list[RowItem] = []
+        ground = pg.GraphicsWidget()
+        self.grid = QGraphicsGridLayout(ground)
+        self.setCentralWidget(ground)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMouseTracking(True)
         self.scene().sigMouseMoved.connect(self._moved)
@@ -65,24 +67,39 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         self._clear()
         self._build(spec)
         self._arrange()
+        self.grid.activate()  # the clock's marks depend on how wide the rows now are
         self.setAccessibleName(spec.name)
         self.setAccessibleDescription(spec.summary)
         start, end = spec.window or (spec.start, spec.end)
         self.set_window(start, end)
 
     def _clear(self) -> None:
-        self.grid.clear()
+        for row in self.rows:
+            row.leave()
         self.rows, self.ribbon, self.axis = [], None, None
+
+    def _item(self) -> RowItem:
+        """The item of the next row: one that an earlier episode used, else a new one."""
+        place = len(self.rows)
+        if place == len(self._items):
+            item = RowItem()
+            item.view.dragged.connect(self.pan_seconds)
+            item.view.wheeled.connect(self._wheeled)
+            item.view.picked.connect(self._picked)
+            self._items.append(item)
+            self.scene().addItem(item)
+        return self._items[place]
 
     def _build(self, spec: StackSpec) -> None:
         origin = spec.start
         if spec.ribbon is not None:
-            self.ribbon = RibbonRow(spec.ribbon, self.theme, origin)
+            self.ribbon = RibbonRow(spec.ribbon, self.theme, origin, self._item())
             self.rows.append(self.ribbon)
-        self.rows += [PanelRow(panel, self.theme, origin) for panel in spec.panels]
+        for panel in spec.panels:
+            self.rows.append(PanelRow(panel, self.theme, origin, self._item()))
         if spec.events:
-            self.rows.append(EventRow(spec.events, self.theme, origin))
-        self.axis = TimeAxisRow(self.theme, origin)
+            self.rows.append(EventRow(spec.events, self.theme, origin, self._item()))
+        self.axis = TimeAxisRow(self.theme, origin, self._item())
         self.axis.now_word = spec.now_word
         self.axis.zone = spec.zone
         self.rows.append(self.axis)
@@ -90,13 +107,16 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
             row.now = spec.now
             if spec.ribbon is not None:
                 row.breaks = spec.ribbon.breaks
-            row.view.dragged.connect(self.pan_seconds)
-            row.view.wheeled.connect(self._wheeled)
-            row.view.picked.connect(self._picked)
 
     def _arrange(self) -> None:
         gap = self.theme.px(2 * GRID)
-        layout = self.grid.layout
+        layout = self.grid
+        while layout.count():
+            layout.removeAt(0)
+        for n in range(len(self.rows), layout.rowCount()):
+            layout.setRowFixedHeight(n, 0)
+        for item in self._items[len(self.rows) :]:
+            item.hide()
         layout.setContentsMargins(gap, gap, gap, 0)
         layout.setVerticalSpacing(gap)
         self._margins = Margins(
@@ -105,13 +125,15 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
             max(max(row.gutter_wanted() for row in self.rows), self.theme.px(24)),
         )
         for n, row in enumerate(self.rows):
-            self.grid.addItem(row.item, row=n, col=0)
+            layout.addItem(row.item, n, 0)
+            row.item.show()
             row.set_margins(self._margins)
             fixed = row.height() if isinstance(row, EventRow | TimeAxisRow) else None
             if fixed is not None:
                 layout.setRowFixedHeight(n, fixed)
                 layout.setRowStretchFactor(n, 0)
             else:
+                layout.setRowMaximumHeight(n, 16_777_215)  # Qt's own «no limit»
                 layout.setRowMinimumHeight(n, self._least_height(row))
                 layout.setRowStretchFactor(n, round(100 * self._weight(row)))
         self.setMinimumHeight(self.minimumSizeHint().height())
@@ -327,7 +349,7 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
     def resizeEvent(self, event: QResizeEvent | None) -> None:
         super().resizeEvent(event)
         if getattr(self, "spec", None) is not None:
-            self.grid.layout.activate()
+            self.grid.activate()
             self._show()
 
     def close(self) -> bool:

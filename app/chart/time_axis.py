@@ -5,10 +5,11 @@ from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
+from PySide6.QtWidgets import QGraphicsItem
 
 from app.chart.marks import fitted
 from app.chart.ribbon import draw_ticks
-from app.chart.row import FRONT, ClockRow, Layer
+from app.chart.row import FRONT, ClockRow, Layer, RowItem
 from app.chart.shapes import MICROSECONDS, Tick
 from app.chart.time_ticks import ClockMark, time_word
 from app.theme import Theme
@@ -17,13 +18,16 @@ from app.theme import Theme
 class TimeAxisRow(ClockRow):
     """Labels of the clock in local wall time; the date of the left edge stands in the left margin."""
 
-    def __init__(self, theme: Theme, origin: int) -> None:
-        super().__init__("", theme, origin)
+    def __init__(self, theme: Theme, origin: int, item: RowItem) -> None:
+        super().__init__("", theme, origin, item)
         self.now_word = ""
         self.zone: ZoneInfo | None = None
         self.note = ""
         self.left_word = ""
         self.labels = Layer(self.item, FRONT, self._whole, self._draw_labels)
+
+    def layers(self) -> list[QGraphicsItem]:
+        return [*super().layers(), self.labels]
 
     def top_height(self) -> int:
         return 0
@@ -139,8 +143,8 @@ class TimeAxisRow(ClockRow):
 class EventRow(ClockRow):
     """Events as ticks with words, in a card of its own."""
 
-    def __init__(self, ticks: tuple[Tick, ...], theme: Theme, origin: int) -> None:
-        super().__init__("", theme, origin)
+    def __init__(self, ticks: tuple[Tick, ...], theme: Theme, origin: int, item: RowItem) -> None:
+        super().__init__("", theme, origin, item)
         self.ticks = tuple(sorted(ticks, key=lambda tick: tick.at))
 
     def top_height(self) -> int:

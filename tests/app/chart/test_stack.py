@@ -198,3 +198,23 @@ def test_focus_is_visible(stack, qtbot):
     stack.clearFocus()
     QApplication.processEvents()
     assert stack.grab().toImage() != focused
+
+
+def test_a_stack_that_showed_another_episode_looks_like_a_new_one(stack, stack_spec, qtbot):
+    fewer = replace(stack_spec, panels=stack_spec.panels[1:], events=(), ribbon=None)
+    stack.set_spec(fewer)
+    fresh = PanelStack(LIGHT)
+    qtbot.addWidget(fresh)
+    fresh.set_spec(fewer)
+    fresh.resize(stack.size())
+    fresh.show()
+    qtbot.waitExposed(fresh)
+    for chart in (stack, fresh):
+        chart.clearFocus()
+        chart.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+    QApplication.processEvents()
+    assert stack.grab().toImage() == fresh.grab().toImage()
+    stack.set_spec(stack_spec)
+    fresh.set_spec(stack_spec)
+    QApplication.processEvents()
+    assert stack.grab().toImage() == fresh.grab().toImage()
