@@ -25,6 +25,9 @@ GAS: Final[dict[str, str]] = {
         "The A-a gradient would be {aa:0} mmHg, which cannot be: FiO2 {fio2:fraction} or a pressure is wrong.",
     "gas.no_paco2": "PCO2 not reported",
     "gas.no_ph": "pH not reported",
+    "gas.saturation_differs":
+        "Saturation {sao2:0} % reported, {expected:0} % expected of its PO2 and pH: one of the three is wrong, or "
+        "the haemoglobin is unusual.",
     "gas.site_assumed": "Nobody said what was sampled: taken as arterial.",
     "gas.venous_has_no_state": "a venous gas has no state",
     "consistency.digits_swapped": "Digits may be swapped: {channel:name} {typed} or {other}?",

@@ -7,7 +7,7 @@ from math import isnan
 from core.judgement.paired_limits import above
 from core.judgement.policy import Policy
 from core.judgement.shapes import GasFigure
-from core.physiology import acid_base, oxygenation
+from core.physiology import acid_base, consistency, oxygenation, saturation, specimen
 from core.physiology.formula import Reasoned, reasoned
 from core.record.gas_sample import GasSample
 from core.record.instant import MINUTE, Instant
@@ -18,16 +18,23 @@ from core.record.support import SupportTime
 STANDS_FOR_ARTERIAL = frozenset({"arterial", "capillary"})
 """Sites whose pH and PCO2 judge. A capillary PO2 does not stand for an arterial one."""
 
+SATURATION_WITHIN = 5.0
+"""Points of % between a reported saturation and the one that PO2 and pH make one expect (common practice)."""
+
 
 def gas_figures(
     samples: tuple[GasSample, ...], settings: SettingsInForce, support: SupportTime, policy: Policy
 ) -> tuple[GasFigure, ...]:
     """The figures of every sample, in order of time."""
-    return tuple(gas_figure(g, settings, support, policy) for g in samples)
+    # septic shock denied is not shock denied: then it is not known
+    shock = True if settings.episode.latest_text("septic_shock") == "yes" else None
+    return tuple(gas_figure(g, settings, support, policy, shock) for g in samples)
 
 
-def gas_figure(gas: GasSample, settings: SettingsInForce, support: SupportTime, policy: Policy) -> GasFigure:
-    """The figures of one sample. Everything absent has a reason."""
+def gas_figure(
+    gas: GasSample, settings: SettingsInForce, support: SupportTime, policy: Policy, shock: bool | None = None
+) -> GasFigure:
+    """The figures of one sample. Everything absent has a reason. `shock` None: not known."""
     reasons: dict[str, Message] = {}
     warnings: list[Message] = []
     off = is_off_support(gas.at, support, policy)
@@ -43,6 +50,7 @@ def gas_figure(gas: GasSample, settings: SettingsInForce, support: SupportTime, 
     if aa is not None and aa < 0:
         warnings.append(Message("gas.negative_gradient", {"aa": aa, "fio2": fio2}))
     consistent = _consistent(gas, calculated.value, policy, reasons, warnings)
+    _check_saturation(gas, warnings)
     if gas.site_assumed:
         warnings.append(Message("gas.site_assumed", {}))
     state = state_of(gas, policy, reasons)
@@ -55,7 +63,9 @@ def gas_figure(gas: GasSample, settings: SettingsInForce, support: SupportTime, 
         aa_gradient_mmHg=aa, consistent=consistent, state=state,
         hypercapnic=None if isnan(gas.paco2) else above(gas.paco2, policy.state.hypercapnia_mmHg),
         off_support=off, doubt=gas.doubt, corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
-        warnings=tuple(warnings), ids=gas.ids,
+        warnings=tuple(warnings), ids=gas.ids, sao2_percent=_number(gas.sao2),
+        explanations=_explanations(gas, policy) if consistent is False else (),
+        rule_out=specimen.venous_rule_out(gas.paco2, shock=shock) if gas.site == "venous" else None,
     )  # fmt: skip
 
 
@@ -135,6 +145,21 @@ def _consistent(
     values = {"hco3": gas.hco3, "calculated": calculated, "difference": difference, "within": within}
     warnings.append(Message("gas.inconsistent", values))
     return False
+
+
+def _explanations(gas: GasSample, policy: Policy) -> tuple[Message, ...]:
+    within = policy.state.consistent_within_mmol_L.value
+    return consistency.bicarbonate_agreement(gas.ph, gas.paco2, gas.hco3, tolerance=within).explanations
+
+
+def _check_saturation(gas: GasSample, warnings: list[Message]) -> None:
+    """Warn where the reported saturation does not belong to the sample's own PO2 and pH."""
+    if isnan(gas.sao2) or isnan(gas.pao2) or isnan(gas.ph):
+        return
+    difference = saturation.saturation_difference(gas.sao2, gas.pao2, gas.ph)
+    if abs(difference) > SATURATION_WITHIN + 1e-9:
+        values = {"sao2": gas.sao2, "expected": gas.sao2 - difference, "within": SATURATION_WITHIN}
+        warnings.append(Message("gas.saturation_differs", {**values}))
 
 
 def _number(value: float) -> float | None:

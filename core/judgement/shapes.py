@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from core.judgement.derived import FigureInput, OxygenationFigure, VentilationFigure
 from core.record.instant import Instant
 from core.record.message import Message
 
@@ -76,6 +77,12 @@ class GasFigure:
     reasons: Reasons = field(default_factory=dict)
     warnings: tuple[Message, ...] = ()
     ids: tuple[str, ...] = ()
+    sao2_percent: float | None = None
+    """Saturation as the analyser reports it, of this sample."""
+    explanations: tuple[Message, ...] = ()
+    """Where the bicarbonate does not belong to the gas: the usual explanations, likeliest first."""
+    rule_out: Message | None = None
+    """What a venous PCO2 says of arterial hypercapnia; None for other samples."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -182,6 +189,8 @@ class RatioFigure:
     span_from: Instant | None = None
     caveat: Message | None = None
     reasons: Reasons = field(default_factory=dict)
+    inputs: Mapping[str, FigureInput] = field(default_factory=dict)
+    """What the newest value was made from."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -333,6 +342,8 @@ class EpisodeFigures:
     due: tuple[DueFigure, ...] = ()
     levers: tuple[LeverFigure, ...] = ()
     expected_co2: ExpectedCO2 | None = None
+    oxygenation: OxygenationFigure = field(default_factory=OxygenationFigure)
+    ventilation: VentilationFigure = field(default_factory=VentilationFigure)
     concern: Concern = field(default_factory=lambda: Concern(5))
     warnings: tuple[Message, ...] = ()
     policy_hash: str = ""

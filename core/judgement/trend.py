@@ -6,12 +6,13 @@ is a slope and a band, and nothing is called significant.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import isnan
 
 import numpy as np
 
 from core.judgement.context import Context
+from core.judgement.derived import FigureInput
 from core.judgement.device_medians import Medians, medians
 from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.shapes import RatioFigure
@@ -89,7 +90,12 @@ def _pf(ctx: Context) -> RatioFigure:
     if gases and gases[-1].pf_mmHg is None:
         unknown = Message("trend.fio2_not_known", {"at": gases[-1].at})
         reasons["latest"] = unknown if gases[-1].fio2 is None else gases[-1].reasons.get("pf_mmHg", unknown)
-    return slope_figure(ctx, points, reasons)
+    figure = slope_figure(ctx, points, reasons)
+    if figure.latest is None:
+        return figure
+    last = gases[-1]
+    inputs = {"pao2": FigureInput(last.pao2_mmHg, last.at), "fio2": FigureInput(last.fio2, last.at)}
+    return replace(figure, inputs=inputs)
 
 
 @dataclass(frozen=True, slots=True)
@@ -133,7 +139,13 @@ def _sf(ctx: Context, points: Saturations) -> RatioFigure:
     if points.t.size and points.spo2[-1] > ceiling:
         values = {"at": int(points.t[-1]), "spo2": float(points.spo2[-1]), "limit": ceiling}
         reasons["latest"] = Message("trend.spo2_above_ceiling", values)
-    return slope_figure(ctx, Points(points.t[usable], points.spo2[usable] / points.fio2[usable]), reasons)
+    figure = slope_figure(ctx, Points(points.t[usable], points.spo2[usable] / points.fio2[usable]), reasons)
+    return figure if figure.latest is None else replace(figure, inputs=_oxygen_inputs(points))
+
+
+def _oxygen_inputs(points: Saturations) -> dict[str, FigureInput]:
+    at = int(points.t[-1])
+    return {"spo2": FigureInput(float(points.spo2[-1]), at), "fio2": FigureInput(float(points.fio2[-1]), at)}
 
 
 def _oxygen_reasons(points: Saturations) -> dict[str, Message]:
@@ -149,7 +161,21 @@ def _rox(ctx: Context, points: Saturations) -> RatioFigure:
         reasons.setdefault("latest", Message("trend.rate_not_known", {"at": int(points.t[-1])}))
     usable = np.isfinite(points.fio2) & (rates > 0)
     ratio = points.spo2[usable] / points.fio2[usable] / rates[usable]
-    return slope_figure(ctx, Points(points.t[usable], ratio), reasons, ROX_CAVEAT)
+    figure = slope_figure(ctx, Points(points.t[usable], ratio), reasons, ROX_CAVEAT)
+    if figure.latest is None:
+        return figure
+    rate = FigureInput(float(rates[-1]), _rate_time(ctx, int(points.t[-1])))
+    return replace(figure, inputs={**_oxygen_inputs(points), "rr": rate})
+
+
+def _rate_time(ctx: Context, at: Instant) -> Instant:
+    """When the rate that `rates_at` gives for a moment was counted; the moment itself for the device's median."""
+    counted = _finite(ctx.episode.number("rr").spots)
+    if not len(counted):
+        return at
+    nearest = int(counted.t[int(np.argmin(np.abs(counted.t - at)))])
+    reach = int(ctx.policy.freshness.vitals_min.value * MINUTE)
+    return nearest if abs(nearest - at) <= reach else at
 
 
 def rates_at(ctx: Context, times: Times) -> Values:
