@@ -7,7 +7,8 @@ Importing this package costs nothing; import the module you draw with.
     app.chart.stack         PanelStack(theme): ribbon and panels on one clock; set_spec(StackSpec)
     app.chart.acid_base_map AcidBaseMap(theme): pH against PaCO2; set_spec(MapSpec)
     app.chart.render        pictures without a screen: image_of, svg_of, pdf_of
-    app.chart.time_ticks    labels of a clock in local wall time
+    app.chart.time_ticks    labels of a clock in local wall time; moment_word, date_word, time_word
+    app.chart.marks         the shapes themselves, for icons beside words elsewhere in the window
 
 Clock
     Every instant that goes in or comes out is int64 microseconds UTC. Inside a PanelStack the x coordinate
@@ -22,6 +23,8 @@ Signals
                 range_changed(int, int)         the window in view
                 reduced_changed(bool)           data are reduced to extremes per pixel
                 bracket_activated(Bracket), tick_activated(Tick)
+                methods: set_window, go_to, go_home, go_now, show_all, zoom, point_at,
+                readings_at(instant), settings_at(instant)
     WardLanes   selection_changed(str, LaneItem | None)   lane key, item
                 lane_activated(str), item_activated(str, LaneItem), hovered(str)
     AcidBaseMap hovered(str), gas_activated(MapGas)

@@ -80,7 +80,7 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
         state = min(longest + px(56), width * 0.36)
     head, gap, count = float(px(36)), float(px(6)), max(len(spec.lanes), 1)
     lane = (height - head) / count - gap
-    least = px(84) if folded else px(60)
+    least = px(84) if folded else px(54)
     return LaneGeometry(
         width, head, round(min(max(lane, least), px(92))), gap, left, state, due, folded, spec.start, spec.end
     )
@@ -97,7 +97,7 @@ def place_items(lane: Lane, g: LaneGeometry, theme: Theme) -> list[Placed]:
         if item.kind is LaneKind.GAS:
             gas_row = 1 - gas_row if x < gas_end else 0  # two gases of one time stand one under the other
             gas_end = x + px(17)
-            row = g.middle + gas_row * px(16)
+            row = g.middle + gas_row * px(14)
             box = _around(x, row, px(20), px(20))
         elif item.kind is LaneKind.FLAG:
             x = max(x, flag_end)

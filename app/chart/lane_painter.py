@@ -195,7 +195,8 @@ class LanePainter:
             painter.drawText(room, Qt.AlignmentFlag.AlignCenter, word)
 
     def _draw_items(self, painter: QPainter, lane: Lane, placed: list[Placed], chosen: LaneItem | None) -> None:
-        taken: list[tuple[float, float]] = []
+        low = [p.x for p in placed if p.item.kind is LaneKind.GAS and p.row > self.g.middle]
+        taken = [(x - self.theme.px(12), x + self.theme.px(12)) for x in low]  # marks that reach into the foot
         for kind in (LaneKind.WINDOW, LaneKind.SETTING, LaneKind.FLAG, LaneKind.GAS):
             for p in placed:
                 if p.item.kind is kind:
@@ -239,7 +240,7 @@ class LanePainter:
         painter.setPen(solid_pen(c.accent, 1.5))
         for x in (placed.box.left(), placed.box.right()):
             if g.left <= x <= g.left + g.clock:
-                painter.drawLine(QPointF(x, rail - 2), QPointF(x, rail + theme.px(4)))
+                painter.drawLine(QPointF(x, rail - theme.px(4)), QPointF(x, rail + 1))
         painter.setFont(theme.font(theme.type.caption))
         width = painter.fontMetrics().horizontalAdvance(placed.item.word)
         left = min(max((a + b - width) / 2, g.left), g.left + g.clock - width)

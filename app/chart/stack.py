@@ -7,21 +7,25 @@ from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
 from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QResizeEvent
 from PySide6.QtWidgets import QGraphicsGridLayout, QWidget
 
+from app.chart.clock_window import kept_inside, zoomed
 from app.chart.panel import PanelRow
 from app.chart.ribbon import RibbonRow
 from app.chart.row import ClockRow, Margins, RowItem
 from app.chart.shapes import MICROSECONDS, Bracket, Reading, RibbonStep, StackSpec, Tick
 from app.chart.time_axis import EventRow, TimeAxisRow
-from app.chart.time_ticks import MINUTE, date_word, time_ticks
+from app.chart.time_ticks import date_word, time_ticks
 from app.theme import GRID, Theme
 
-LEAST_SPAN = 5 * MINUTE
 _PANEL_LEAST = 96  # pixels at 100 %
 _RIBBON_WEIGHT = 1.1
 
 
 class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
-    """Draws a StackSpec. Keys: arrows pan (Shift: half a window), + and - zoom, Home start, End now, 0 all."""
+    """Draws a StackSpec.
+
+    Keys: arrows pan (Shift: half a window), + and - zoom, Home start, End now, 0 all; Ctrl with an arrow moves
+    the crosshair, Enter opens the bracket or tick under it, Esc takes it away.
+    """
 
     instant_changed = Signal(object)
     range_changed = Signal(object, object)
@@ -168,21 +172,10 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         """Shows a stretch of time, kept inside the episode with a little air at both ends."""
         if self.spec is None:
             return
-        start, end = self._inside(int(start), int(end))
-        self._window = (start, end)
+        last = max(self.spec.end, self.spec.now or self.spec.end)
+        self._window = start, end = kept_inside(int(start), int(end), self.spec.start, last)
         self._show()
         self.range_changed.emit(start, end)
-
-    def _inside(self, start: int, end: int) -> tuple[int, int]:
-        assert self.spec is not None
-        latest = max(self.spec.end, self.spec.now or self.spec.end)
-        air = max((latest - self.spec.start) // 50, MINUTE)
-        low, high = self.spec.start - air, latest + air
-        span = min(max(end - start, LEAST_SPAN), high - low)
-        if end - start != span:
-            start = (start + end - span) // 2
-        start = min(max(start, low), high - span)
-        return start, start + span
 
     def _show(self) -> None:
         assert self.spec is not None
@@ -220,7 +213,7 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         if about is None:
             inside = self.instant is not None and start <= self.instant <= end
             about = self.instant if inside and self.instant is not None else (start + end) // 2
-        self.set_window(about - round((about - start) * factor), about + round((end - about) * factor))
+        self.set_window(*zoomed(start, end, factor, about))
 
     def go_to(self, instant: int) -> None:
         """Moves the window so that an instant stands in its middle, e.g. an anchor."""
@@ -286,11 +279,7 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
     def _picked(self, at: QPointF) -> None:
         sender = self.sender()
         row = next((row for row in self.rows if row.view is sender), None)
-        found = row.picked(at) if row is not None else None
-        if isinstance(found, Bracket):
-            self.bracket_activated.emit(found)
-        elif isinstance(found, Tick):
-            self.tick_activated.emit(found)
+        self._open(row.picked(at) if row is not None else None)
 
     def mousePressEvent(self, event: QMouseEvent) -> None:
         super().mousePressEvent(event)
@@ -304,7 +293,30 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         self.point_at(None)
         super().leaveEvent(event)
 
+    def _step_crosshair(self, way: int) -> None:
+        start, end = self._window
+        inside = self.instant is not None and start <= self.instant <= end
+        at = self.instant if inside and self.instant is not None else (start + end) // 2
+        self.point_at(min(max(at + way * (end - start) // 100, start), end))
+
+    def _open_at_crosshair(self) -> None:
+        for row in self.rows:
+            if self.instant is not None:
+                x = float(row.frame().x(row.seconds(self.instant)))
+                if self._open(row.picked(QPointF(x, 0.0))):
+                    return
+
+    def _open(self, found: object | None) -> bool:
+        if isinstance(found, Bracket):
+            self.bracket_activated.emit(found)
+        elif isinstance(found, Tick):
+            self.tick_activated.emit(found)
+        return found is not None
+
     def keyPressEvent(self, event: QKeyEvent) -> None:
+        if self._key_of_crosshair(event):
+            event.accept()
+            return
         keys, span = Qt.Key, (self._window[1] - self._window[0]) / MICROSECONDS
         step = span / (2 if event.modifiers() & Qt.KeyboardModifier.ShiftModifier else 8)
         match event.key():
@@ -326,6 +338,19 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
                 event.ignore()  # the window may know the key; pyqtgraph's own handler would swallow it
                 return
         event.accept()
+
+    def _key_of_crosshair(self, event: QKeyEvent) -> bool:
+        ways = {int(Qt.Key.Key_Left): -1, int(Qt.Key.Key_Right): 1}
+        control = bool(event.modifiers() & Qt.KeyboardModifier.ControlModifier)
+        if control and event.key() in ways:
+            self._step_crosshair(ways[event.key()])
+        elif event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and self.instant is not None:
+            self._open_at_crosshair()
+        elif event.key() == Qt.Key.Key_Escape and self.instant is not None:
+            self.point_at(None)
+        else:
+            return False
+        return True
 
     def focusInEvent(self, event: QFocusEvent) -> None:
         super().focusInEvent(event)

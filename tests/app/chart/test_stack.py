@@ -7,7 +7,8 @@ from PySide6.QtCore import QPoint, QPointF, Qt
 from PySide6.QtGui import QWheelEvent
 from PySide6.QtWidgets import QApplication
 
-from app.chart.stack import LEAST_SPAN, PanelStack
+from app.chart.clock_window import LEAST_SPAN
+from app.chart.stack import PanelStack
 from app.theme import DARK, LIGHT
 from tests.app.chart.conftest import START, at
 
@@ -137,6 +138,23 @@ def test_the_crosshair_says_where_it_is(stack, qtbot):
         stack.point_at(None)
     assert caught.args == [None]
     assert not any(row.cross.isVisible() for row in stack.rows)
+
+
+def test_keys_move_the_crosshair_and_open_what_is_under_it(stack, qtbot):
+    stack.set_window(at(0), at(100))
+    control = Qt.KeyboardModifier.ControlModifier
+    qtbot.keyClick(stack, Qt.Key.Key_Right, control)
+    assert stack.instant == at(51)
+    for _ in range(2):
+        qtbot.keyClick(stack, Qt.Key.Key_Left, control)
+    assert stack.instant == at(49)
+    stack.point_at(at(70))
+    with qtbot.waitSignal(stack.bracket_activated) as caught:
+        qtbot.keyClick(stack, Qt.Key.Key_Return)
+    assert caught.args[0].word == "better"
+    qtbot.keyClick(stack, Qt.Key.Key_Escape)
+    assert stack.instant is None
+    assert stack.window == (at(0), at(100))
 
 
 def test_settings_in_force_at_an_instant(stack):
