@@ -29,7 +29,7 @@ class ChoiceRow(QWidget):
             button = QToolButton()
             button.setText(word)
             button.setCheckable(True)
-            button.setProperty("role", "plain")
+            button.setProperty("role", "choice")
             button.setAccessibleName(f"{heading} {word}".strip())
             button.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
             self._group.addButton(button, number)

@@ -87,6 +87,7 @@ class LogStrip(QFrame):
         self.said = QLabel()
         self.said.setTextFormat(Qt.TextFormat.RichText)
         self.said.setWordWrap(True)
+        self.said.setAlignment(Qt.AlignmentFlag.AlignTop)
         self.said.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
         self.buttons: dict[str, QPushButton] = {}
         self._row = QHBoxLayout()
@@ -105,6 +106,7 @@ class LogStrip(QFrame):
         ):  # fmt: skip
             button = QPushButton(f"{word}  {shortcut}")
             button.setAccessibleName(word)
+            button.setProperty("role", "small")
             button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
             self.buttons[key] = button
             self._row.addWidget(button)
@@ -124,10 +126,10 @@ class LogStrip(QFrame):
         """Take another look or text size."""
         self._theme = theme
         px = theme.px
-        self._column.setContentsMargins(px(12), px(6), px(12), px(6))
-        self._column.setSpacing(px(4))
+        self._column.setContentsMargins(px(12), px(5), px(12), px(4))
+        self._column.setSpacing(px(2))
         self._row.setSpacing(px(8))
-        self.said.setMinimumHeight(round(theme.px(theme.type.body) * 1.4))
+        self.said.setMinimumHeight(round(theme.px(theme.type.body) * 1.25) * 2)
 
     # whom it is for
 

@@ -47,6 +47,14 @@ QPushButton[role="primary"]:hover {{ background: {support_edge}; }}
 QPushButton[role="primary"]:focus {{ border: 2px solid {ink}; }}
 QPushButton[role="primary"]:disabled {{ background: {sunken}; color: {ink_quiet}; border-color: {line}; }}
 QPushButton[role="plain"], QToolButton[role="plain"] {{ border-color: transparent; background: transparent; }}
+QPushButton[role="small"] {{ padding: {g1}px {g3}px; min-height: {choice}px; }}
+QPushButton[role="small"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
+QToolButton[role="choice"] {{
+    border-color: transparent; background: transparent; padding: {g1}px {g3}px; min-height: {choice}px;
+}}
+QToolButton[role="choice"]:hover {{ background: {wash}; }}
+QToolButton[role="choice"]:checked {{ background: {wash}; border-color: {accent}; font-weight: 600; }}
+QToolButton[role="choice"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
 QPushButton[role="plain"]:hover, QToolButton[role="plain"]:hover {{ background: {wash}; }}
 QPushButton[role="plain"]:checked, QToolButton[role="plain"]:checked {{
     background: {wash}; border-color: {accent}; font-weight: 600;
@@ -67,6 +75,11 @@ QComboBox::drop-down {{ border: 0; width: {g6}px; }}
 QComboBox QAbstractItemView {{ background: {raised}; border: 1px solid {line}; outline: 0; }}
 
 QCheckBox, QRadioButton {{ spacing: {g2}px; min-height: {target}px; background: transparent; }}
+QCheckBox::indicator {{
+    width: {g4}px; height: {g4}px; background: {raised}; border: 1px solid {edge}; border-radius: {g1}px;
+}}
+QCheckBox::indicator:checked {{ background: {accent}; border: 1px solid {accent}; }}
+QCheckBox::indicator:disabled {{ border-color: {line}; }}
 QCheckBox:focus, QRadioButton:focus {{ border: 2px solid {accent}; border-radius: {g1}px; }}
 
 QListView, QTreeView, QTableView {{
@@ -88,7 +101,7 @@ QHeaderView::section {{
 QTableCornerButton::section {{ background: {raised}; border: 0; }}
 
 QMenuBar {{ background: {ground}; border-bottom: 1px solid {line}; }}
-QMenuBar::item {{ padding: {g2}px {g3}px; background: transparent; }}
+QMenuBar::item {{ padding: {menu}px {g3}px; background: transparent; }}
 QMenuBar::item:selected {{ background: {wash}; }}
 QMenu {{ background: {raised}; border: 1px solid {line}; padding: {g1}px; }}
 QMenu::item {{ padding: {g2}px {g6}px {g2}px {g4}px; border-radius: {g1}px; }}
@@ -141,4 +154,4 @@ def sheet(theme: Theme) -> str:
     inner = {f"g{n}_1": max(distances[f"g{n}"] - 1, 0) for n in range(1, 5)}
     sizes = {name: theme.px(getattr(t, name)) for name in ("caption", "body", "emphasis", "title", "display")}
     colours = {name: getattr(c, name) for name in _SURFACES + _INKS}
-    return _SHEET.format(radius=8, bar=3, target=theme.px(24), **distances, **inner, **sizes, **colours)
+    return _SHEET.format(radius=8, bar=3, target=theme.px(24), choice=theme.px(20), menu=theme.px(10), **distances, **inner, **sizes, **colours)

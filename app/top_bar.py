@@ -1,19 +1,18 @@
-"""The line on top of every page: where you are, which shift, as of when, and who logs."""
+"""The line on top of every page: where you are, as of when, and who logs."""
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QWidget
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
 
 from app.choice_row import ChoiceRow
-from app.formats import clock, wall
+from app.formats import wall
 from app.session import Session
-from app.shift import Shift
 from app.theme import Theme
 
 
 class TopBar(QWidget):
-    """Pages at the left, shift and moment in the middle, person at the right."""
+    """Pages at the left, moment and person at the right."""
 
     page_chosen = Signal(str)
     person_wanted = Signal()
@@ -25,18 +24,15 @@ class TopBar(QWidget):
             ("ward", self.tr("Ward")), ("episode", self.tr("Episode")), ("compare", self.tr("Compare")),
             ("handover", self.tr("Handover")),
         ))  # fmt: skip
-        self.shift = QLabel()
-        self.shift.setProperty("role", "quiet")
         self.moment = QLabel()
         self.moment.setProperty("role", "strong")
-        self.moment.setTextInteractionFlags(Qt.TextInteractionFlag.NoTextInteraction)
+        self.moment.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Maximum)
         self.person = QPushButton()
-        self.person.setProperty("role", "plain")
+        self.person.setProperty("role", "small")
         self.person.setToolTip(self.tr("Change person (Ctrl+I)"))
         self._row = QHBoxLayout(self)
         self._row.addWidget(self.pages)
         self._row.addStretch(1)
-        self._row.addWidget(self.shift)
         self._row.addWidget(self.moment)
         self._row.addWidget(self.person)
         self.pages.chosen.connect(self.page_chosen)
@@ -47,15 +43,12 @@ class TopBar(QWidget):
         """Take another look or text size."""
         self._theme = theme
         px = theme.px
-        self._row.setContentsMargins(px(16), px(4), px(16), px(4))
-        self._row.setSpacing(px(16))
+        self._row.setContentsMargins(px(8), px(2), px(12), px(2))
+        self._row.setSpacing(px(8))
 
-    def show_session(self, session: Session, shift: Shift) -> None:
-        """Say shift, moment and person."""
+    def show_session(self, session: Session) -> None:
+        """Say moment and person."""
         zone, at = session.zone, session.moment()
-        kind = self.tr("Night shift") if shift.night else self.tr("Day shift")
-        self.shift.setText(self.tr("{kind} {start} to {end}").format(
-            kind=kind, start=clock(shift.start, zone), end=clock(shift.end, zone)))  # fmt: skip
         pretended = session.clock.pretended is not None
         self.moment.setProperty("pill", pretended or session.as_of is not None)
         if pretended:
@@ -70,6 +63,7 @@ class TopBar(QWidget):
         self.moment.setAccessibleName(text)
         self.moment.style().unpolish(self.moment)
         self.moment.style().polish(self.moment)
+        self.moment.updateGeometry()
         self.person.setText(session.person or self.tr("Who are you?"))
         self.person.setAccessibleName(self.tr("Person: {who}").format(who=session.person or self.tr("nobody signed in")))
 

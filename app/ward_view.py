@@ -5,13 +5,14 @@ from __future__ import annotations
 from dataclasses import dataclass
 from zoneinfo import ZoneInfo
 
-from PySide6.QtCore import Signal
-from PySide6.QtGui import QFontMetrics
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QFontMetrics, QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QSizePolicy, QVBoxLayout, QWidget
 
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LaneItem, LanesSpec
 from app.choice_row import ChoiceRow
+from app.formats import clock
 from app.shift import Shift
 from app.theme import Theme, Tier
 from app.ward.lane_words import LaneWords, OnWard, strongest_flag
@@ -51,13 +52,11 @@ class _Line(QLabel):
         """The text without the cut."""
         return self._whole
 
-    def resizeEvent(self, event) -> None:  # type: ignore[no-untyped-def]
+    def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self._fit()
 
     def _fit(self) -> None:
-        from PySide6.QtCore import Qt
-
         self.setText(QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width()))
 
 
@@ -83,6 +82,8 @@ class WardView(QWidget):
             (Order.CONCERN, self.tr("concern")), (Order.BED, self.tr("bed")), (Order.DUE, self.tr("next due"))))  # fmt: skip
         self.filter = ChoiceRow(self.tr("Show"), (
             (Shown.ALL, self.tr("all")), (Shown.NOT_RESPONDING, self.tr("not responding")), (Shown.DUE, self.tr("due soon"))))  # fmt: skip
+        self.shift = QLabel()
+        self.shift.setProperty("role", "quiet")
         self.search = QLineEdit()
         self.search.setPlaceholderText(self.tr("Find a bed"))
         self.search.setAccessibleName(self.tr("Find an episode by bed, place or indication"))
@@ -98,14 +99,15 @@ class WardView(QWidget):
         tools.addWidget(self.sort)
         tools.addWidget(self.filter)
         tools.addStretch(1)
+        tools.addWidget(self.shift)
         self.search.setMaximumWidth(px(220))
         tools.addWidget(self.search)
         self._foot = QHBoxLayout()
         self._foot.setSpacing(px(16))
         self._foot.addWidget(self.status, 1)
         column = QVBoxLayout(self)
-        column.setContentsMargins(px(16), px(12), px(16), px(4))
-        column.setSpacing(px(8))
+        column.setContentsMargins(px(16), px(8), px(16), px(2))
+        column.setSpacing(px(6))
         column.addWidget(self.first)
         column.addLayout(tools)
         column.addWidget(self.lanes, 1)
@@ -170,6 +172,7 @@ class WardView(QWidget):
         lanes = [words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1)
                  for f in ordered(shown(ward, self._shown, self.search.text()), self._order)]  # fmt: skip
         self._tell_first(words)
+        self._tell_shift(content)
         self.lanes.set_spec(LanesSpec(
             ZoneInfo(content.zone), content.shift.start, content.shift.end, tuple(lanes),
             content.as_of if content.shift.start <= content.as_of <= content.shift.end else None, self.tr("now"),
@@ -187,6 +190,11 @@ class WardView(QWidget):
         flag = strongest_flag(top)
         why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)
         self.first.show_first(top.episode, top.label, why, Tier(flag.tier) if flag is not None else None)
+
+    def _tell_shift(self, content: WardContent) -> None:
+        kind = self.tr("Night shift") if content.shift.night else self.tr("Day shift")
+        start, end = clock(content.shift.start, content.zone), clock(content.shift.end, content.zone)
+        self.shift.setText(self.tr("{kind} {start} to {end}").format(kind=kind, start=start, end=end))
 
     def _empty_word(self) -> str:
         if self._content is not None and self._content.episodes:

@@ -6,7 +6,7 @@ from dataclasses import replace
 from pathlib import Path
 
 from PySide6.QtCore import Signal
-from PySide6.QtGui import QCloseEvent
+from PySide6.QtGui import QCloseEvent, QResizeEvent
 from PySide6.QtWidgets import QApplication, QLayoutItem, QMainWindow, QVBoxLayout, QWidget
 
 from app import preferences as kept
@@ -52,6 +52,8 @@ class MainWindow(QMainWindow):
         self.top = TopBar(self.theme)
         self.top.page_chosen.connect(self.show_page)
         self.top.person_wanted.connect(self.actions_by_key["sign_in"].trigger)
+        self._no_corner = QWidget(self)
+        self._no_corner.hide()
         self.progress = ProgressLine(self)
         self._middle = QWidget()
         self._column = QVBoxLayout(self._middle)
@@ -103,6 +105,25 @@ class MainWindow(QMainWindow):
             self.strip.set_theme(self.theme)
         elif self.first is not None:
             self.show_first_page()
+        self._place_top()
+
+    def _place_top(self) -> None:
+        """The top line stands in the menu's row where there is room, else in a row of its own."""
+        if self.model is None:
+            return
+        bar = self.menuBar()
+        menus = sum(bar.actionGeometry(action).width() for action in bar.actions()) + self.theme.px(24)
+        fits = menus + self.top.sizeHint().width() <= self.width()
+        if fits and bar.cornerWidget() is not self.top:
+            bar.setCornerWidget(self.top)
+        elif not fits and self._column.indexOf(self.top) < 0:
+            bar.setCornerWidget(self._no_corner)
+            self._column.insertWidget(0, self.top)
+        self.top.show()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._place_top()
 
     def _set_ticks(self) -> None:
         self.actions_by_key["dark"].setChecked(self.preferences.theme == "dark")
@@ -142,8 +163,6 @@ class MainWindow(QMainWindow):
         self.episode_feed = EpisodeFeed(model, self.feed, self.preferences.gas_unit, self)
         self.pages = Pages(self.theme)
         self.strip = LogStrip(self.theme, model)
-        self._column.addWidget(self.top)
-        self.top.show()
         self._column.addWidget(self.pages, 1)
         self._column.addWidget(self.progress)
         foot = QVBoxLayout()
@@ -153,6 +172,7 @@ class MainWindow(QMainWindow):
         self._column.addLayout(foot)
         self._connect(model)
         self._tell_session()
+        self._place_top()
         self.pages.ward.lanes.setFocus()
         model.start()
 
@@ -237,7 +257,8 @@ class MainWindow(QMainWindow):
 
     def _tell_session(self) -> None:
         assert self.model is not None
-        self.top.show_session(self.model.session, self.shift())
+        self.top.show_session(self.model.session)
+        self._place_top()
         name = self.model.session.store_path.name
         self.setWindowTitle(self.tr("{store} - Luffmark").format(store=name))
 

@@ -3,21 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from PySide6.QtCore import QCoreApplication
 
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
-from app.course import Course, Stretch
+from app.course import Course
 from app.finding_names import due_name, marker_name
-from app.formats import clock, fraction, minutes, quantity, trimmed
+from app.formats import clock, minutes, quantity
 from app.phrases import (
     change_sentence,
     change_word,
     channel_name,
     gas_name,
     gas_words,
-    known,
     settings_line,
     settings_word,
     state_of,
@@ -32,6 +31,7 @@ from core.record.instant import MINUTE, Instant
 
 translate = QCoreApplication.translate
 OPEN_FLAGS = ("raised", "seen")
+CLOSE = 30 * MINUTE
 _TIERS = ("escalate", "concern", "remark")
 
 
@@ -153,9 +153,10 @@ class LaneWords:
         judged = dict(_judged(f))
         for gas in f.gases:
             yield self._gas_item(gas, judged.get(gas.at))
+        words = _tick_words(course)
         for n, s in enumerate(course.stretches):
-            yield LaneItem(LaneKind.SETTING, s.start, self._change_sentence(n, course),
-                           word=_tick_word(s), doubtful=s.doubtful)  # fmt: skip
+            yield LaneItem(LaneKind.SETTING, s.start, self._change_sentence(n, course), word=words[n],
+                           doubtful=s.doubtful)  # fmt: skip
         for b in course.breaks:
             end = b.end if b.end is not None else self.as_of
             yield LaneItem(LaneKind.BREAK, b.start, self._break_sentence(b.start, b.end), end=end,
@@ -214,12 +215,19 @@ class LaneWords:
                         settled=flag.state != "raised", payload=flag)  # fmt: skip
 
 
-def _tick_word(stretch: Stretch) -> str:
-    """Only what the bar above does not say already: the oxygen, or another setting."""
-    if stretch.changed.keys() & {"fio2", "o2_flow"}:
-        s = stretch.settings
-        return fraction(s.fio2) if known(s.fio2) else f"{trimmed(s.o2_flow)} L/min" if known(s.o2_flow) else ""
-    return "" if stretch.changed.keys() & {"ipap", "epap", "cpap", "mode"} else change_word(stretch)
+def _tick_words(course: Course) -> list[str]:
+    """The word under each change. Of changes so close that their words would collide, the last says all."""
+    words: list[str] = []
+    changed: set[str] = set()
+    for n, s in enumerate(course.stretches):
+        changed |= s.changed.keys()
+        follows = course.stretches[n + 1].start if n + 1 < len(course.stretches) else None
+        if follows is not None and follows - s.start < CLOSE:
+            words.append("")
+        else:
+            words.append(change_word(replace(s, changed=dict.fromkeys(changed))))
+            changed = set()
+    return words
 
 
 def anchor_name(response: ResponseFigure) -> str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from PySide6.QtCore import QRectF, QSize, Qt, Signal
 from PySide6.QtGui import QPainter, QPaintEvent
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
 
 from app.chart.marks import pennant
 from app.formats import inert
@@ -20,7 +20,7 @@ class _Pennant(QWidget):
         self.setFixedSize(self.sizeHint())
 
     def sizeHint(self) -> QSize:
-        return QSize(self.theme.px(32), self.theme.px(36))
+        return QSize(self.theme.px(26), self.theme.px(30))
 
     def paintEvent(self, event: QPaintEvent) -> None:  # noqa: ARG002
         painter = QPainter(self)
@@ -45,11 +45,12 @@ class SeeFirst(QFrame):
         self._why.setWordWrap(True)
         self._why.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Preferred)
         self._open = QPushButton(self.tr("Open"))
+        self._open.setProperty("role", "small")
         self._open.clicked.connect(self._emit_opened)
-        words = QVBoxLayout()
-        words.setSpacing(2)
+        words = QHBoxLayout()
+        words.setSpacing(theme.px(16))
         words.addWidget(self._title)
-        words.addWidget(self._why)
+        words.addWidget(self._why, 1)
         row = QHBoxLayout(self)
         row.setSpacing(theme.px(12))
         row.addWidget(self._sign, 0, Qt.AlignmentFlag.AlignVCenter)
@@ -61,7 +62,7 @@ class SeeFirst(QFrame):
         """Take another look or text size."""
         self._sign.theme = theme
         self._sign.setFixedSize(self._sign.sizeHint())
-        margin = theme.px(8)
+        margin = theme.px(4)
         self.layout().setContentsMargins(theme.px(16), margin, theme.px(12), margin)
 
     def show_first(self, key: str, label: str, why: str, tier: Tier | None) -> None:
