@@ -25,6 +25,7 @@ from core.record.instant import Instant
 from core.record.message import Message
 
 _ANCHORS = {"start": "Support started", "interface": "Interface changed", "break_end": "Break ended"}
+_SHARED_UNITS = (" cmH2O", " %", " L/min", "/min", " s")
 SCORE_NAMES = {"hacor": "HACOR", "hacor_updated": "HACOR, updated", "news2": "NEWS2", "rox": "ROX"}
 
 
@@ -75,7 +76,7 @@ class FigureLines:
             text += f" ({formats.hours(s.hours_on_mask_last_24h)} {self.tr('in the last 24 h')})"
         if s.ended_at is not None:
             why = f", {s.end_reason}" if s.end_reason else ""
-            text += f"; {self.tr('ended')} {formats.wall(s.ended_at, self.reader.zone)}{why}"
+            text += f"; {self.tr('ended')} {self.reader.time(s.ended_at)}{why}"
         elif s.break_since is not None:
             text += f"; {self.tr('off the mask since')} {formats.clock(s.break_since, self.reader.zone)}"
         return text
@@ -102,7 +103,7 @@ class FigureLines:
     def gas(self, g: GasFigure) -> str:
         """A gas with what is computed from it, on one line."""
         site = g.site + (f" ({self.tr('assumed')})" if g.site_assumed else "")
-        parts = [f"{formats.wall(g.at, self.reader.zone)} {site}: pH {self.ph(g)}", f"PCO2 {self.paco2(g)}"]
+        parts = [f"{self.reader.time(g.at)} {site}: pH {self.ph(g)}", f"PCO2 {self.paco2(g)}"]
         if g.pao2_mmHg is not None:
             parts.append(f"PO2 {self.pressure(g.pao2_mmHg)}")
         if g.hco3_mmol_L is not None:
@@ -135,6 +136,9 @@ class FigureLines:
 
     def step(self, step: Step) -> str:
         """One change: what, from, to."""
+        if step.channel == "break_end":
+            length = f"{formats.minutes(step.before)} " if isinstance(step.before, float) else ""
+            return self.tr("Break of {length}ended").format(length=length) if length else self.tr("Break ended")
         name = quantity_name(step.channel)
         name = name if name[:2] == "pH" else name[0].upper() + name[1:]
         if step.before is None and step.after is None:
@@ -143,9 +147,8 @@ class FigureLines:
         if step.before is None:
             return f"{self.tr(name)} {after}"
         before = self._amount(step.channel, step.before)
-        unit = after.rpartition(" ")[2]
-        if before.endswith(f" {unit}") and unit in ("cmH2O", "%", "L/min", "s"):
-            before = before.removesuffix(f" {unit}")
+        unit = next((u for u in _SHARED_UNITS if before.endswith(u) and after.endswith(u)), "")
+        before = before.removesuffix(unit)
         return f"{self.tr(name)} {before} {self.tr('to')} {after}"
 
     def _amount(self, channel: str, value: float | str | None) -> str:
@@ -157,11 +160,18 @@ class FigureLines:
 
     def anchor(self, r: ResponseFigure) -> str:
         """What an anchor was: its steps, those of one moment together."""
-        steps = [self.step(s) for s in r.steps if not (s.before is None and s.after is None)]
+        steps = self.steps(s for s in r.steps if not (s.before is None and s.after is None))
         if r.anchor == "change":
-            return ", ".join(steps) or self.tr("Settings changed")
+            return steps or self.tr("Settings changed")
+        if r.anchor == "break_end" and steps:
+            return steps
         head = self.tr(_ANCHORS[r.anchor])
-        return f"{head}: {', '.join(steps)}" if steps else head
+        return f"{head}: {steps}" if steps else head
+
+    def steps(self, steps: Iterable[Step]) -> str:
+        """Several changes in one sentence."""
+        words = [self.step(s) for s in steps]
+        return ", ".join([*words[:1], *(_lowered(w) for w in words[1:])])
 
     def verdict(self, r: ResponseFigure) -> str:
         """The headline with the gas it rests on, by how much, after how long."""
@@ -196,7 +206,7 @@ class FigureLines:
         from app.finding_names import marker_name
 
         name = marker_name(f.marker, self.reader)
-        text = f"{self.tr(f.tier).upper()} {name}, {self.tr('since')} {formats.wall(f.since, self.reader.zone)}"
+        text = f"{self.tr(f.tier).upper()} {name}, {self.tr('since')} {self.reader.time(f.since)}"
         return text + self._fate(f)
 
     def _fate(self, f: FlagFigure) -> str:
@@ -228,9 +238,8 @@ class FigureLines:
         """A due item: what, by when, its state and why."""
         from app.finding_names import due_name
 
-        zone = self.reader.zone
         state = {"overdue": self.tr("OVERDUE"), "awaiting result": self.tr("awaiting result")}.get(d.state, "")
-        head = f"{due_name(d.what, self.reader)} {self.tr('by')} {formats.wall(d.due_until, zone)}"
+        head = f"{due_name(d.what, self.reader)} {self.tr('by')} {self.reader.time(d.due_until)}"
         return f"{head}{', ' + state if state else ''}: {sentence(d.because, self.reader)}"
 
     def score(self, name: str, s: ScoreFigure) -> str:
@@ -245,7 +254,7 @@ class FigureLines:
             names = ", ".join(quantity_name(m) for m in s.missing)
             text = f"{shown} {self.tr('between')} {low} {self.tr('and')} {high} ({self.tr('missing')}: {names})"
         if s.at is not None:
-            text += f" {self.tr('at')} {formats.wall(s.at, self.reader.zone)}"
+            text += f" {self.tr('at')} {self.reader.time(s.at)}"
         if s.population == "outside":
             text += f", {self.tr('outside its population')}"
         return text + (f". {sentence(s.caveat, self.reader)}" if s.caveat else "")
@@ -260,7 +269,7 @@ class FigureLines:
                 return self.pressure(value, sign=sign)
             return (formats.signed if sign else formats.fixed)(value, decimals)
 
-        text = f"{name} {amount(r.latest)} {self.tr('at')} {formats.wall(r.at, self.reader.zone)}"
+        text = f"{name} {amount(r.latest)} {self.tr('at')} {self.reader.time(r.at)}"
         if r.slope_per_h is not None:
             text += f", {self.tr('slope')} {amount(r.slope_per_h, sign=True)} {self.tr('per h')}"
             if r.slope_low is not None and r.slope_high is not None:
@@ -287,3 +296,9 @@ class FigureLines:
     def clock(self, at: Instant) -> str:
         """The hour and minute."""
         return formats.clock(at, self.reader.zone)
+
+
+def _lowered(words: str) -> str:
+    """A name inside a sentence; abbreviations keep their letters."""
+    first = words.partition(" ")[0]
+    return words if any(c.isupper() or c.isdigit() for c in first[1:]) else words[0].lower() + words[1:]

@@ -20,6 +20,7 @@ from math import isnan
 
 from app import formats
 from core.record.channels import CHANNELS
+from core.record.instant import Instant
 from core.record.message import Value
 
 _log = logging.getLogger("luffmark")
@@ -33,12 +34,20 @@ MISSING = "?"
 class Reader:
     """Whom a sentence is for: the zone of wall-clock times, the unit of gas pressures, the language.
 
-    `translate` turns a template into the reader's language; the identity by default.
+    `translate` turns a template into the reader's language; the identity by default. `near` is a stretch of
+    time whose dates the page itself states: moments in it are told by the clock alone.
     """
 
     zone: str = "UTC"
     gas_unit: str = "mmHg"
     translate: Callable[[str], str] = str
+    near: tuple[Instant, Instant] | None = None
+
+    def time(self, at: Instant) -> str:
+        """A moment in words."""
+        if self.near is not None and self.near[0] <= at <= self.near[1]:
+            return formats.clock(at, self.zone)
+        return formats.wall(at, self.zone)
 
     def name(self, channel: str) -> str:
         """What a channel or computed quantity is called inside a sentence."""
@@ -177,7 +186,7 @@ def _listed(value: Value, _values: Mapping[str, Value], reader: Reader) -> str:
 
 _WRITERS: dict[str, Writer] = {
     "": _plain,
-    "time": lambda v, _m, r: formats.wall(int(_number(v)), r.zone),
+    "time": lambda v, _m, r: r.time(int(_number(v))),
     "clock": lambda v, _m, r: formats.clock(int(_number(v)), r.zone),
     **{str(n): _decimals(n, sign=False) for n in range(4)},
     **{f"+{n}": _decimals(n, sign=True) for n in range(4)},

@@ -1,0 +1,367 @@
+"""What the handover sheet says, every word ready and none drawn: one page for the ward, one per episode.
+
+Print and plain text are made from the same content, so that they cannot differ. Missing data are said to be
+missing; nothing is left blank.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, replace
+
+from app import formats
+from app.finding_names import due_name, marker_name
+from app.operations.handover import Handover
+from app.sheet.chart_data import ShiftChart, shift_chart
+from app.sheet.gas_table import GasRow, gas_rows
+from app.words import Reader, sentence
+from app.words.figure_lines import FigureLines
+from core.figures.shift import ShiftFigures
+from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, Step
+from core.record.instant import HOUR
+
+CAUTION = (
+    "Supports and never replaces clinical judgement. It is no alarm and no monitor. Local policy and licensed "
+    "practice come first. Sources marked 'from memory' or 'common practice' are to be confirmed locally."
+)
+_STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
+Fact = tuple[str, str]
+
+
+@dataclass(frozen=True, slots=True)
+class FlagLine:
+    """One flag: its tier, its head on one line, its evidence, and where the marker comes from."""
+
+    tier: str
+    head: str
+    evidence: str
+    source: str
+    is_open: bool
+
+
+@dataclass(frozen=True, slots=True)
+class ChangeLine:
+    """One change of the shift: when, what, and what it did in words."""
+
+    at: str
+    what: str
+    response: str
+    verdict: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class WardRow:
+    """One episode on the ward's page. `tier` is its strongest open flag's, or "" for none."""
+
+    number: int
+    label: str
+    who: str
+    tier: str
+    state: str
+    change_of_state: str
+    support: str
+    response: str
+    flags: tuple[str, ...]
+    due: str
+    limits: str
+    ended: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class WardPage:
+    """The page for the ward."""
+
+    title: str
+    shift: str
+    see_first: str
+    rows: tuple[WardRow, ...]
+    due: tuple[str, ...]
+    missing: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class EpisodePage:
+    """The page of one episode."""
+
+    label: str
+    subtitle: str
+    place: int
+    tier: str
+    standing: str
+    facts: tuple[Fact, ...]
+    settings: str
+    changes: tuple[ChangeLine, ...]
+    chart: ShiftChart
+    gases: tuple[GasRow, ...]
+    leak: str
+    flags: tuple[FlagLine, ...]
+    due: tuple[str, ...]
+    care: tuple[Fact, ...]
+    told: tuple[str, ...]
+    plan: str
+    jobs: str
+    remark: str
+    to_check: tuple[str, ...]
+    left_out_changes: int = 0
+    left_out_gases: int = 0
+    left_out_flags: int = 0
+    left_out_checks: int = 0
+
+
+@dataclass(frozen=True, slots=True)
+class SheetContent:
+    """A whole handover, its foot lines and who gives and takes it ("" leaves a line to sign)."""
+
+    ward: WardPage
+    episodes: tuple[EpisodePage, ...]
+    head: str
+    printed: str
+    given_by: str = ""
+    taken_by: str = ""
+    caution: str = CAUTION
+    gas_unit: str = "mmHg"
+
+
+def sheet_content(
+    handover: Handover, reader: Reader, *, given_by: str = "", taken_by: str = "", title: str = ""
+) -> SheetContent:
+    """Everything a handover says, for one reader."""
+    shift = handover.shift
+    reader = replace(reader, near=(shift.start - 2 * HOUR, shift.end + 10 * HOUR))
+    writer = _Writer(handover, reader)
+    printed = f"Printed {formats.wall(handover.prepared_at, reader.zone)} ({reader.zone})"
+    if handover.as_known_at is not None:
+        printed += f"; as known at {formats.wall(handover.as_known_at, reader.zone)}"
+    return SheetContent(
+        writer.ward(title or "Handover"),
+        tuple(writer.episode(n, s) for n, s in enumerate(handover.shift.episodes, 1)),
+        f"Ledger head {handover.printed_head}", printed, given_by, taken_by, gas_unit=reader.gas_unit,
+    )  # fmt: skip
+
+
+class _Writer:
+    """Turns one handover into words."""
+
+    def __init__(self, handover: Handover, reader: Reader) -> None:
+        self._h = handover
+        self._reader = reader
+        self._lines = FigureLines(reader)
+
+    # -- the ward -----------------------------------------------------------------------------------
+
+    def ward(self, title: str) -> WardPage:
+        shift = self._h.shift
+        span = formats.span(shift.start, shift.end, self._reader.zone)
+        return WardPage(
+            title, f"Shift {span}", self._see_first(),
+            tuple(self._ward_row(n, s) for n, s in enumerate(shift.episodes, 1)),
+            tuple(self._ward_due()), tuple(self._ward_missing()),
+        )  # fmt: skip
+
+    def _see_first(self) -> str:
+        first = self._h.shift.first
+        if first is None or first.now.concern.why is None:
+            return "No episode stands out: no open flag, nothing overdue."
+        return f"{first.now.label}: {sentence(first.now.concern.why, self._reader)}"
+
+    def _ward_row(self, number: int, s: ShiftFigures) -> WardRow:
+        f, p = s.now, s.now.profile
+        opened = sorted((x for x in s.flags_open if x.strongest), key=_strength)
+        return WardRow(
+            number, f.label, self._who(f), opened[0].tier if opened else "", self._standing(f),
+            self._change_of_state(s), self._support_now(f), self._latest_response(f),
+            tuple(self._flag_line(x) for x in opened), "; ".join(self._due_short(d) for d in s.due),
+            f"Ceiling: {p.get('ceiling_of_care') or formats.ABSENT}. "
+            f"Resuscitation: {p.get('resuscitation') or formats.ABSENT}.",
+            f.support.ended_at is not None,
+        )  # fmt: skip
+
+    def _support_now(self, f: EpisodeFigures) -> str:
+        s = f.support
+        if s.ended_at is not None:
+            return f"Support ended {formats.wall(s.ended_at, self._reader.zone)}" + (
+                f", {s.end_reason}" if s.end_reason else ""
+            )
+        text = self._lines.settings(s)
+        return f"{text}; OFF THE MASK since {self._clock(s.break_since)}" if s.break_since is not None else text
+
+    def _who(self, f: EpisodeFigures) -> str:
+        p = f.profile
+        age = p.get("age")
+        parts = (formats.quantity("age", age) if age is not None else "age not recorded", _word(p.get("sex"), "sex"),
+                 formats.quantity("indication", p.get("indication")) if p.get("indication") else
+                 "indication not recorded")  # fmt: skip
+        return ", ".join(parts)
+
+    def _standing(self, f: EpisodeFigures) -> str:
+        """The last gas that tells the state, and the state."""
+        gases = [g for g in f.gases if g.site != "venous"]
+        if not gases:
+            return "No arterial or capillary gas recorded."
+        last = gases[-1]
+        off = ", off support" if last.off_support else ""
+        state = last.state or "state not known"
+        return (
+            f"{state.capitalize()}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)} "
+            f"at {self._moment(last.at)}"
+        )
+
+    def _change_of_state(self, s: ShiftFigures) -> str:
+        before, after = s.state_before, s.state_after
+        if s.began and after:
+            return f"support started this shift, now {after}"
+        return f"{before} to {after} this shift" if before and after and before != after else ""
+
+    def _latest_response(self, f: EpisodeFigures) -> str:
+        judged = [r for r in f.responses if r.headline not in ("not yet known", "not judged")]
+        waiting = f.responses[-1] if f.responses and f.responses[-1].headline == "not yet known" else None
+        text = ""
+        if judged:
+            r = judged[-1]
+            anchor = "support started" if r.anchor == "start" else self._lines.anchor(r)
+            text = f"{self._moment(r.anchor_at)} {anchor}. {_opened(self._lines.verdict(r))}"
+        if waiting is not None:
+            text += f" Change of {self._moment(waiting.anchor_at)}: response not yet known."
+        return text.strip() or "No response judged yet."
+
+    def _flag_line(self, f: FlagFigure) -> str:
+        return f"{f.tier.upper()} {marker_name(f.marker, self._reader)}, since {self._moment(f.since)}"
+
+    def _ward_due(self) -> Iterator[str]:
+        items = [(d, s.now.label) for s in self._h.shift.episodes for d in s.due]
+        for d, label in sorted(items, key=lambda x: (x[0].due_until, x[1])):
+            yield f"{label}: {self._due_short(d)}"
+
+    def _due_short(self, d: DueFigure) -> str:
+        state = {"overdue": " OVERDUE", "awaiting result": " (sent, awaiting result)"}.get(d.state, "")
+        return f"{due_name(d.what, self._reader)} by {self._moment(d.due_until)}{state}"
+
+    def _ward_missing(self) -> Iterator[str]:
+        """What nobody recorded and the next shift will ask for."""
+        for channel, word in (("handover_remark", "handover remark"), ("plan", "plan"),
+                              ("ceiling_of_care", "ceiling of care"),
+                              ("resuscitation", "resuscitation decision")):  # fmt: skip
+            without = [s.now.label for s in self._h.shift.episodes
+                       if not s.now.profile.get(channel) and s.now.support.ended_at is None]  # fmt: skip
+            if without and len(without) == len(self._h.shift.episodes):
+                yield f"No {word} recorded for any episode."
+            elif without:
+                yield f"No {word} recorded: {', '.join(without)}."
+
+    # -- one episode ----------------------------------------------------------------------------------
+
+    def episode(self, number: int, s: ShiftFigures) -> EpisodePage:
+        f = s.now
+        record = self._h.records[s.episode]
+        opened = sorted(s.flags_open, key=_strength)
+        other = [x for x in (*s.flags_raised, *s.flags_ended) if x not in opened]
+        return EpisodePage(
+            f.label, self._subtitle(f), number, opened[0].tier if opened else "", self._standing(f),
+            tuple(self._facts(s)), self._support_now(f), tuple(self._changes(s)),
+            shift_chart(record, f, s.start, s.end, self._reader), gas_rows(s, self._lines),
+            self._lines.leak(f.leak) + self._interface(f),
+            tuple(self._flag(x) for x in (*opened, *dict.fromkeys(other))),
+            tuple(self._lines.due(d) for d in s.due), tuple(self._care(s)),
+            tuple(f"{self._clock(t.at)} {t.words or 'somebody'}" for t in s.told),
+            str(f.profile.get("plan") or formats.ABSENT), str(f.profile.get("jobs") or formats.ABSENT),
+            str(f.profile.get("handover_remark") or ""), tuple(self._to_check(s)),
+        )  # fmt: skip
+
+    def _subtitle(self, f: EpisodeFigures) -> str:
+        place = f.profile.get("location") or "place not recorded"
+        identifier = f.profile.get("identifier")
+        key = f"Episode {f.episode}" + (f", {identifier}" if identifier else "")
+        return f"{self._who(f)}. {place}. {key}"
+
+    def _facts(self, s: ShiftFigures) -> Iterator[Fact]:
+        f, p = s.now, s.now.profile
+        yield "Why on support", formats.quantity("indication", p.get("indication"))
+        yield "Support", self._lines.on_mask(f.support)
+        yield "Mask this shift", self._mask_this_shift(s)
+        yield "SpO2 target", self._target(f)
+        yield "Ceiling of care", str(p.get("ceiling_of_care") or formats.ABSENT)
+        yield "Resuscitation", str(p.get("resuscitation") or formats.ABSENT)
+        yield "Responsible", str(p.get("contact") or formats.ABSENT)
+        usual = p.get("usual_paco2")
+        yield "Usual PaCO2", self._lines.pressure(usual if isinstance(usual, float) else None)
+        yield "Home support", str(p.get("home_support") or formats.ABSENT)
+
+    def _mask_this_shift(self, s: ShiftFigures) -> str:
+        text = formats.hours(s.hours_on_mask)
+        if not s.breaks:
+            return f"{text}, no break recorded"
+        spans = ", ".join(
+            f"{self._moment(b.start)} to {self._moment(b.end) if b.end is not None else 'now'}" for b in s.breaks
+        )
+        return f"{text}; off {spans}"
+
+    def _target(self, f: EpisodeFigures) -> str:
+        low, high = f.profile.get("target_spo2_low"), f.profile.get("target_spo2_high")
+        if isinstance(low, float) and isinstance(high, float):
+            return f"{formats.trimmed(low)} to {formats.trimmed(high)} %"
+        return "not recorded; the range its risk calls for is used"
+
+    def _changes(self, s: ShiftFigures) -> Iterator[ChangeLine]:
+        """Every change of the shift in order of time; what was set with an anchor stands in its line."""
+        beside: dict[int, list[Step]] = {}
+        for step in s.other_changes:
+            beside.setdefault(step.at, []).append(step)
+        rows = []
+        for r in s.responses:
+            what = self._lines.anchor(r)
+            if with_it := beside.pop(r.anchor_at, None):
+                what += f"; with it {self._lines.steps(with_it)}"
+            line = ChangeLine(self._when(r.first_at, r.anchor_at), what, _opened(self._lines.verdict(r)), r.headline)
+            rows.append((r.first_at, line))
+        for at, steps in beside.items():
+            rows.append((at, ChangeLine(self._moment(at), self._lines.steps(steps), "Not judged by itself.")))
+        yield from (line for _, line in sorted(rows, key=lambda x: x[0]))
+
+    def _when(self, first: int, last: int) -> str:
+        return self._moment(last) if first == last else f"{self._moment(first)} to {self._moment(last)}"
+
+    def _interface(self, f: EpisodeFigures) -> str:
+        return f". Interface: {f.support.interface or formats.ABSENT}"
+
+    def _flag(self, x: FlagFigure) -> FlagLine:
+        return FlagLine(x.tier, self._lines.flag_head(x), self._lines.evidence(x), self._lines.certainty(x),
+                        x.state in ("raised", "seen"))  # fmt: skip
+
+    def _care(self, s: ShiftFigures) -> Iterator[Fact]:
+        record = self._h.records[s.episode].until(s.end)
+        p = s.now.profile
+        yield "Tolerance", record.latest_text("comfort") or formats.ABSENT
+        yield "Secretions", self._newest_event(s, "secretions")
+        yield "Skin", self._newest_event(s, "skin_check")
+        yield "Feeding", str(p.get("feeding") or formats.ABSENT)
+        yield "Isolation", str(p.get("isolation") or formats.ABSENT)
+
+    def _newest_event(self, s: ShiftFigures, channel: str) -> str:
+        found = [e for e in s.events if e.channel == channel]
+        if not found:
+            return "nothing recorded this shift"
+        return f"{self._clock(found[-1].at)} {found[-1].words or 'recorded'}"
+
+    def _to_check(self, s: ShiftFigures) -> Iterator[str]:
+        if s.recorded_late and not self._h.imported:
+            yield f"{s.recorded_late} entries of this shift were recorded more than 1 h late."
+        warnings = [*s.now.warnings, *(w for g in s.gases for w in g.warnings)]
+        yield from dict.fromkeys(sentence(w, self._reader) for w in warnings)
+
+    def _clock(self, at: int) -> str:
+        return formats.clock(at, self._reader.zone)
+
+    def _moment(self, at: int) -> str:
+        return self._reader.time(at)
+
+
+def _strength(f: FlagFigure) -> tuple[int, int]:
+    return (_STRENGTH.get(f.tier, 3), f.since)
+
+
+def _opened(text: str) -> str:
+    return text[:1].upper() + text[1:]
+
+
+def _word(value: float | str | None, name: str) -> str:
+    return str(value) if value else f"{name} not recorded"

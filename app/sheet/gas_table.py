@@ -1,0 +1,86 @@
+"""The table of a shift's gases with their differences, as words."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from app import formats
+from app.words.figure_lines import FigureLines
+from core.figures.shift import ShiftFigures
+from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure
+
+HEADINGS = ("Time", "Site", "pH", "PaCO2", "PaO2", "HCO3", "P/F", "FiO2", "State", "Against the last change")
+NO_VALUE = "-"
+
+
+@dataclass(frozen=True, slots=True)
+class GasRow:
+    """One gas. `delta_ph` and `delta_paco2` are against the baseline of the change it judges ("" for none)."""
+
+    at: str
+    site: str
+    ph: str
+    delta_ph: str
+    paco2: str
+    delta_paco2: str
+    pao2: str
+    hco3: str
+    pf: str
+    fio2: str
+    state: str
+    verdict: str
+    is_before: bool = False
+
+
+def gas_rows(s: ShiftFigures, lines: FigureLines) -> tuple[GasRow, ...]:
+    """The gases of the shift, and the last one before it to compare with."""
+    judged = judgements(s.now.responses)
+    rows = [_row(g, judged.get(g.at), lines, is_before=True) for g in (s.gas_before,) if g is not None]
+    return (*rows, *(_row(g, judged.get(g.at), lines) for g in s.gases))
+
+
+def judgements(responses: tuple[ResponseFigure, ...]) -> dict[int, JudgedGas]:
+    """For each gas the change it is attributed to: the newest that it can judge."""
+    found: dict[int, JudgedGas] = {}
+    for r in responses:
+        for g in r.gases:
+            if g.attributable:
+                found[g.at] = g
+    return found
+
+
+def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bool = False) -> GasRow:
+    unit = lines.reader.gas_unit
+
+    def pressure(value: float | None) -> str:
+        return NO_VALUE if value is None else formats.gas_pressure(value, unit).removesuffix(f" {unit}")
+
+    hco3 = g.hco3_mmol_L if g.hco3_mmol_L is not None else g.hco3_calculated_mmol_L
+    mark = "" if g.hco3_mmol_L is not None or hco3 is None else "c"
+    marks = [m for m in lines.gas_marks(g) if m != g.state]
+    return GasRow(
+        formats.clock(g.at, lines.reader.zone),
+        g.site[:3] + ("?" if g.site_assumed else ""),
+        NO_VALUE if g.ph is None else lines.ph(g), _signed(j.delta_ph if j else None, 2),
+        lines.paco2(g).removesuffix(f" {unit}") if g.paco2_mmHg is not None else NO_VALUE,
+        _pressure_change(j.delta_paco2_mmHg if j else None, unit),
+        pressure(g.pao2_mmHg), NO_VALUE if hco3 is None else formats.fixed(hco3, 1) + mark,
+        pressure(g.pf_mmHg), NO_VALUE if g.fio2 is None else formats.fraction(g.fio2),
+        ", ".join([g.state or "not known", *marks]), _verdict(j), is_before,
+    )  # fmt: skip
+
+
+def _signed(value: float | None, decimals: int) -> str:
+    return "" if value is None else formats.signed(value, decimals)
+
+
+def _pressure_change(value: float | None, unit: str) -> str:
+    return "" if value is None else formats.gas_pressure(value, unit, sign=True).removesuffix(f" {unit}")
+
+
+def _verdict(j: JudgedGas | None) -> str:
+    if j is None:
+        return "judges no change"
+    timing = {"early": ", early", "late": ", late"}.get(j.timing, "")
+    lost = ", gain lost" if j.since_start.gain_lost else ""
+    return f"{j.verdict or 'not judged'} ({formats.minutes(j.minutes)}{timing}){lost}"

@@ -1,0 +1,152 @@
+"""Prints a handover: to a PDF, to a printer, or into a preview. All three paint the same pages."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Final
+
+from PySide6.QtCore import QBuffer, QIODevice, QMarginsF
+from PySide6.QtGui import QGuiApplication, QPagedPaintDevice, QPageLayout, QPageSize, QPainter, QPdfWriter
+
+from app.operations.outcome import report
+from app.sheet.blocks import Signatures
+from app.sheet.content import SheetContent
+from app.sheet.pages import draw_episode, fit_episode
+from app.sheet.press import SMALL, SUBTITLE, TITLE, Align, Press, Style
+from app.sheet.ward_sheet import draw_ward, split_ward
+from core.record.message import refuse
+
+PAPERS: Final = {"A4": QPageSize.PageSizeId.A4, "Letter": QPageSize.PageSizeId.Letter}
+DOTS_PER_INCH: Final = 1200
+_MARGIN: Final = 36.0
+_HEAD, _FOOT = 40.0, 27.0
+
+
+def write_pdf(content: SheetContent, path: Path, paper: str = "A4") -> int:
+    """Write the handover as a PDF; the number of its pages. Whole or not at all.
+
+    Raises:
+        OSError: the file cannot be written; nothing is left behind.
+        RecordError: `handover.paper` for a paper that is not known.
+    """
+    data, pages = pdf_bytes(content, paper)
+    unfinished = path.with_name(path.name + ".unfinished")
+    try:
+        unfinished.write_bytes(data)
+        unfinished.replace(path)
+    except OSError as error:
+        unfinished.unlink(missing_ok=True)
+        raise type(error)(error.errno, error.strerror, str(path)) from None
+    return pages
+
+
+def pdf_bytes(content: SheetContent, paper: str = "A4") -> tuple[bytes, int]:
+    """The handover as the bytes of a PDF, and the number of its pages. Needs a QGuiApplication.
+
+    Raises:
+        RecordError: `handover.paper` for a paper that is not known.
+    """
+    if QGuiApplication.instance() is None:
+        raise RuntimeError("a QGuiApplication must exist before fonts can be used")
+    buffer = QBuffer()
+    buffer.open(QIODevice.OpenModeFlag.WriteOnly)
+    writer = QPdfWriter(buffer)
+    writer.setResolution(DOTS_PER_INCH)
+    writer.setTitle(f"{content.ward.title}, {content.ward.shift}")
+    writer.setCreator("Luffmark")
+    set_paper(writer, paper)
+    pages = paint(content, writer, DOTS_PER_INCH)
+    buffer.close()
+    return bytes(buffer.data().data()), pages
+
+
+def set_paper(device: QPagedPaintDevice, paper: str) -> None:
+    """Upright paper with our own margins.
+
+    Raises:
+        RecordError: `handover.paper`.
+    """
+    if paper not in PAPERS:
+        raise refuse("handover.paper", paper=paper, accepted=" | ".join(PAPERS))
+    device.setPageSize(QPageSize(PAPERS[paper]))
+    device.setPageOrientation(QPageLayout.Orientation.Portrait)
+    device.setPageMargins(QMarginsF(0, 0, 0, 0), QPageLayout.Unit.Point)
+
+
+def paint(content: SheetContent, device: QPagedPaintDevice, dots_per_inch: int) -> int:
+    """Paint every page on a device that is set up; the number of pages. Reports progress by page."""
+    size = device.pageLayout().fullRectPoints()
+    painter = QPainter(device)  # type: ignore[arg-type]
+    try:
+        return _Job(content, device, Press(painter, dots_per_inch), float(size.width()), float(size.height())).run()
+    finally:
+        painter.end()
+
+
+class _Job:
+    """One handover on one device."""
+
+    def __init__(
+        self, content: SheetContent, device: QPagedPaintDevice, press: Press, width: float, height: float
+    ) -> None:
+        self._content, self._device, self._press = content, device, press
+        self._page_width, self._page_height = width, height
+        self._signed = Signatures(content.given_by, content.taken_by)
+        self._left, self._width = _MARGIN, width - 2 * _MARGIN
+        self._top, self._bottom = _MARGIN + _HEAD, height - _MARGIN - _FOOT
+        self._number = 0
+        ward = split_ward(content.ward, press, self._width, self._bottom - self._top, self._signed)
+        self._ward = ward
+        self._pages = len(ward) + len(content.episodes)
+
+    def run(self) -> int:
+        c, w = self._content, self._content.ward
+        for n, part in enumerate(self._ward):
+            self._begin(w.title if n == 0 else f"{w.title}, continued", w.shift, "")
+            signed = self._signed if n + 1 == len(self._ward) else None
+            draw_ward(part, self._press, self._left, self._top, self._width, self._bottom, signed)
+        for page in c.episodes:
+            self._begin(page.label, page.subtitle, page.standing)
+            fitted = fit_episode(page, self._press, self._width, self._bottom - self._top, c.gas_unit, self._signed)
+            draw_episode(fitted, self._press, self._left, self._top, self._width, self._bottom, self._signed)
+        return self._pages
+
+    def _begin(self, title: str, subtitle: str, standing: str) -> None:
+        """A new page with its head and foot."""
+        report(self._number, self._pages)
+        if self._number:
+            self._device.newPage()
+        self._number += 1
+        self._draw_head(title, subtitle, standing)
+        self._draw_foot()
+
+    def _draw_head(self, title: str, subtitle: str, standing: str) -> None:
+        p, left, wide = self._press, self._left, self._width
+        p.text(left, _MARGIN - 8, wide * 0.5, _on_one_line(p, title, TITLE, wide * 0.5), TITLE)
+        taken = min(p.width(title, TITLE), wide * 0.5) + 12
+        style = next((x for x in (Style(10.5, True), Style(9.5, True)) if p.width(standing, x) <= wide - taken),
+                     Style(8.5, True))  # fmt: skip
+        p.text(left + taken, _MARGIN - 3, wide - taken, _on_one_line(p, standing, style, wide - taken), style,
+               Align.RIGHT)  # fmt: skip
+        line = subtitle if not standing else f"{subtitle}. {self._content.ward.shift}"
+        size = SUBTITLE if p.width(line, SUBTITLE) <= wide else SMALL
+        p.text(left, _MARGIN + 15, wide, _on_one_line(p, line, size, wide), size)
+        p.line(left, _MARGIN + 31, left + wide, _MARGIN + 31, 1.4)
+
+    def _draw_foot(self) -> None:
+        p, c, top = self._press, self._content, self._page_height - _MARGIN - _FOOT + 8
+        p.line(self._left, top, self._left + self._width, top, 0.5)
+        foot = Style(6.6)
+        p.text(self._left, top + 2.5, self._width, c.caution, foot)
+        under = top + 2.5 + p.height(c.caution, foot, self._width) + 1
+        p.text(self._left, under, self._width * 0.8, f"{c.printed}. {c.head}.", foot)
+        p.text(self._left, under, self._width, f"Page {self._number} of {self._pages}", Style(7.5, True), Align.RIGHT)
+
+
+def _on_one_line(press: Press, text: str, style: Style, width: float) -> str:
+    """The text, shortened with dots where it does not fit one line: a head must not run over the page."""
+    if press.width(text, style) <= width:
+        return text
+    while text and press.width(f"{text}...", style) > width:
+        text = text[:-1]
+    return f"{text.rstrip()}..."
