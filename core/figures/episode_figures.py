@@ -9,15 +9,17 @@ from __future__ import annotations
 
 from dataclasses import replace
 
-from core.judgement.anchors import Anchor, find_anchors
+from core.judgement.anchors import find_anchors
 from core.judgement.context import Context
 from core.judgement.course import with_courses
+from core.judgement.expected_co2 import expected
 from core.judgement.gas_findings import gas_figures
 from core.judgement.leak_trend import leak_figure
+from core.judgement.levers import levers
 from core.judgement.policy import Policy
 from core.judgement.response import judge_responses
 from core.judgement.score_findings import with_scores
-from core.judgement.shapes import EpisodeFigures, RatioFigure
+from core.judgement.shapes import EpisodeFigures, ExpectedCO2, RatioFigure
 from core.judgement.support_findings import support_figure
 from core.judgement.trend import channel_trend, ratio_trends
 from core.record.channels import Group, Kind, by_group
@@ -42,11 +44,11 @@ def gas_stage(ctx: Context) -> Context:
     return replace(ctx, gases=gas_figures(ctx.episode.gases, ctx.settings, ctx.support, ctx.policy))
 
 
-def response_stage(ctx: Context) -> tuple[Context, tuple[Anchor, ...]]:
+def response_stage(ctx: Context) -> Context:
     """Anchors, and what each did."""
     anchors = find_anchors(ctx.episode, ctx.settings, ctx.support, ctx.policy)
     responses = with_courses(ctx, anchors, judge_responses(ctx, anchors))
-    return replace(ctx, responses=responses), anchors
+    return replace(ctx, anchors=anchors, responses=responses)
 
 
 def trend_stage(ctx: Context) -> Context:
@@ -57,14 +59,20 @@ def trend_stage(ctx: Context) -> Context:
 
 def judged(episode: Episode, as_of: Instant, policy: Policy) -> Context:
     """Everything that markers and due items read."""
-    ctx, anchors = response_stage(gas_stage(record_stage(episode, as_of, policy)))
-    return with_scores(trend_stage(ctx), anchors)
+    ctx = trend_stage(response_stage(gas_stage(record_stage(episode, as_of, policy))))
+    return with_scores(ctx, ctx.anchors)
 
 
 def channel_trends(ctx: Context) -> dict[str, RatioFigure]:
     """The trend of each channel that is trended and logged."""
     logged = (c for c in TRENDED if len(ctx.episode.number(c.removesuffix("_per_kg"))) or c == "rr")
     return {c: channel_trend(ctx, c) for c in logged}
+
+
+def expected_co2(ctx: Context) -> ExpectedCO2 | None:
+    """The PaCO2 to expect after the latest anchor that acts on CO2."""
+    acting = [a for a in ctx.anchors if "co2" in a.effects]
+    return expected(ctx, acting[-1]) if acting else None
 
 
 def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> EpisodeFigures:
@@ -88,6 +96,8 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
         trends=channel_trends(ctx),
         leak=ctx.leak,
         scores=ctx.scores,
+        levers=levers(ctx),
+        expected_co2=expected_co2(ctx),
         policy_hash=policy.hash,
     )
 

@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from core.judgement.anchors import Anchor
 from core.judgement.policy import Policy
 from core.judgement.shapes import (
     GasFigure,
@@ -46,6 +47,7 @@ class Context:
     settings: SettingsInForce
     support: SupportTime
     gases: tuple[GasFigure, ...] = ()
+    anchors: tuple[Anchor, ...] = ()
     responses: tuple[ResponseFigure, ...] = ()
     pf: RatioFigure = field(default_factory=RatioFigure)
     sf: RatioFigure = field(default_factory=RatioFigure)
