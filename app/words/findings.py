@@ -12,6 +12,13 @@ SUPPORT: Final[dict[str, str]] = {
     "support.start_not_recorded": "the start of support is not recorded",
 }  # fmt: skip
 
+_SECOND = (
+    "{second:pick none=;metabolic_acidosis= mixed with a metabolic acidosis;"
+    "metabolic_alkalosis= mixed with a metabolic alkalosis;"
+    "respiratory_acidosis= mixed with a respiratory acidosis;"
+    "respiratory_alkalosis= mixed with a respiratory alkalosis}"
+)
+
 GAS: Final[dict[str, str]] = {
     "gas.bicarbonate_is_standard": "the ward's bicarbonate is standard, which is not checked against pH and PCO2",
     "gas.consistency_needs_three": "pH, PCO2 and bicarbonate are needed to check them against each other",
@@ -23,6 +30,8 @@ GAS: Final[dict[str, str]] = {
     "gas.needs_arterial": "needs an arterial sample (this one is {site})",
     "gas.negative_gradient":
         "The A-a gradient would be {aa:0} mmHg, which cannot be: FiO2 {fio2:fraction} or a pressure is wrong.",
+    "gas.not_metabolic": "only of a metabolic disturbance",
+    "gas.temperature_correction_off": "reported as measured at 37 \N{DEGREE SIGN}C; the ward corrects for no temperature",
     "gas.no_paco2": "PCO2 not reported",
     "gas.no_ph": "pH not reported",
     "gas.saturation_differs":
@@ -53,13 +62,14 @@ GAS: Final[dict[str, str]] = {
     "gas_class.none": "No disturbance.",
     "gas_class.not_known": "Not classified: pH or PCO2 is missing.",
     "gas_class.borderline": "At the border of normal.",
-    "gas_class.acute_respiratory_acidosis": "Acute respiratory acidosis.",
-    "gas_class.chronic_respiratory_acidosis": "Chronic respiratory acidosis.",
-    "gas_class.acute_on_chronic_respiratory_acidosis": "Acute-on-chronic respiratory acidosis.",
-    "gas_class.acute_respiratory_alkalosis": "Acute respiratory alkalosis.",
-    "gas_class.chronic_respiratory_alkalosis": "Chronic respiratory alkalosis.",
-    "gas_class.metabolic_acidosis": "Metabolic acidosis.",
-    "gas_class.metabolic_alkalosis": "Metabolic alkalosis.",
+    "gas_class.acute_respiratory_acidosis": f"Acute respiratory acidosis{_SECOND}.",
+    "gas_class.chronic_respiratory_acidosis":
+        f"Chronic respiratory acidosis{_SECOND}{{acidotic:pick yes=, pH still low;no=}}.",
+    "gas_class.acute_on_chronic_respiratory_acidosis": f"Acute-on-chronic respiratory acidosis{_SECOND}.",
+    "gas_class.acute_respiratory_alkalosis": f"Acute respiratory alkalosis{_SECOND}.",
+    "gas_class.chronic_respiratory_alkalosis": f"Chronic respiratory alkalosis{_SECOND}.",
+    "gas_class.metabolic_acidosis": f"Metabolic acidosis{_SECOND}.",
+    "gas_class.metabolic_alkalosis": f"Metabolic alkalosis{_SECOND}.",
     "reason.acidotic_all_the_same": "pH {ph:2} is still below {low:2}.",
     "reason.bicarbonate": "Bicarbonate {hco3:1} mmol/L (normal {low:0} to {high:0}).",
     "reason.lines_too_close": "The acute ({acute:1}) and chronic ({chronic:1}) lines lie too close to tell apart.",
@@ -124,6 +134,12 @@ UNDEFINED: Final[dict[str, str]] = {
 }  # fmt: skip
 
 SCORES: Final[dict[str, str]] = {
+    "caveat.chronic_gain_varies": "sources print {low:trim} to {high:trim} mmol/L per 10 mmHg of PaCO2",
+    "caveat.constants_from_memory": "a constant is from memory; confirm it locally",
+    "caveat.other_rules_of_age": "two other published rules give {quarter:0} and {regression:0} mmHg",
+    "caveat.usual_paco2_is_a_guess":
+        "a guess from bicarbonate, spoilt by diuretics and any metabolic disturbance; never judged by",
+    "caveat.within": "within {tolerance:gas}",
     "caveat.co2_production_and_dead_space_constant": "assumes constant CO2 production and dead space",
     "caveat.dead_space_assumed": "dead space is assumed",
     "caveat.points_from_memory": "the added points are from memory; confirm them locally ({source})",

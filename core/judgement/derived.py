@@ -1,10 +1,11 @@
-"""Derived figures, as shapes: one number each, with its inputs and their times, doubt, caveats and reason."""
+"""Derived figures: one number each, with its inputs and their times, its doubt, its caveats, its reason."""
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 
+from core.physiology.formula import reasoned
 from core.record.instant import Instant
 from core.record.message import Message
 
@@ -32,6 +33,27 @@ class DerivedFigure:
     doubt: Message | None = None
     caveats: tuple[Message, ...] = ()
     reason: Message | None = None
+
+
+def derive(
+    key: str, formula: Callable[..., float], inputs: Mapping[str, FigureInput], at: Instant | None, *,
+    doubt: Message | None = None, caveats: tuple[Message, ...] = (),
+) -> DerivedFigure:  # fmt: skip
+    """The figure that a formula of `core.physiology` makes of inputs named like its parameters.
+
+    A missing or impossible input gives None with the reason, never a guess.
+
+    >>> from core.physiology.oxygenation import pf_ratio
+    >>> inputs = {"pao2": FigureInput(60.0, 0), "fio2": FigureInput(0.5, 0)}
+    >>> derive("pf", pf_ratio, inputs, 0).value
+    120.0
+    >>> derive("pf", pf_ratio, inputs | {"fio2": FigureInput()}, 0).reason.key
+    'undefined.fio2_unknown'
+    """
+    numbers = {k: i.value if isinstance(i.value, (int, float)) else None for k, i in inputs.items()}
+    found = reasoned(formula, **numbers)
+    value = None if found.reason is not None else found.value
+    return DerivedFigure(key, value, at, inputs, None if value is None else doubt, caveats, found.reason)
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,5 +91,5 @@ class VentilationFigure:
     minute_ventilation_at_gas_L_per_min: DerivedFigure = DerivedFigure("minute_ventilation")
     """Around the newest gas that judges; the two below are made from it."""
     ventilatory_ratio: DerivedFigure = DerivedFigure("ventilatory_ratio")
-    minute_ventilation_for_usual_paco2_L_per_min: DerivedFigure = DerivedFigure("minute_ventilation_for_paco2")
+    minute_ventilation_for_usual_L_per_min: DerivedFigure = DerivedFigure("minute_ventilation_for_paco2")
     """For the logged usual PaCO2; for another wish see `core.judgement.ventilation_findings.needed_for`."""

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from math import isnan
 
+from core.judgement.derived import FigureInput
 from core.judgement.paired_limits import above
 from core.judgement.policy import Policy
 from core.judgement.shapes import GasFigure
@@ -66,6 +67,7 @@ def gas_figure(
         warnings=tuple(warnings), ids=gas.ids, sao2_percent=_number(gas.sao2),
         explanations=_explanations(gas, policy) if consistent is False else (),
         rule_out=specimen.venous_rule_out(gas.paco2, shock=shock) if gas.site == "venous" else None,
+        temperature=_temperature(gas, settings, policy) if policy.state.temperature_correction else None,
     )  # fmt: skip
 
 
@@ -150,6 +152,17 @@ def _consistent(
 def _explanations(gas: GasSample, policy: Policy) -> tuple[Message, ...]:
     within = policy.state.consistent_within_mmol_L.value
     return consistency.bicarbonate_agreement(gas.ph, gas.paco2, gas.hco3, tolerance=within).explanations
+
+
+def _temperature(gas: GasSample, settings: SettingsInForce, policy: Policy) -> FigureInput:
+    """The patient's temperature nearest to the gas, as fresh as a vital sign has to be; empty where there is none."""
+    series = settings.episode.number("temp")
+    reach = int(policy.freshness.vitals_min.value * MINUTE)
+    near = series.between(gas.at - reach, gas.at + reach)
+    if not len(near):
+        return FigureInput()
+    i = int(abs(near.t - gas.at).argmin())
+    return FigureInput(float(near.v[i]), int(near.t[i]))
 
 
 def _check_saturation(gas: GasSample, warnings: list[Message]) -> None:

@@ -64,6 +64,8 @@ class StateRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     hypoxaemia_pf_mmHg: Limit
     consistent_within_mmol_L: Limit
     reported_bicarbonate: Literal["actual", "standard"]
+    temperature_correction: bool = False
+    """Show gases at the patient's temperature beside the values as measured at 37 degC, which alone judge."""
 
 
 class OxygenRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):

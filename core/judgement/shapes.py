@@ -83,6 +83,8 @@ class GasFigure:
     """Where the bicarbonate does not belong to the gas: the usual explanations, likeliest first."""
     rule_out: Message | None = None
     """What a venous PCO2 says of arterial hypercapnia; None for other samples."""
+    temperature: FigureInput | None = None
+    """The patient's, nearest to the gas; None while the policy reports gases uncorrected (the default)."""
 
 
 @dataclass(frozen=True, slots=True)
