@@ -1,0 +1,139 @@
+"""Levers: their order, when they can act, the reason and what limits them."""
+
+from __future__ import annotations
+
+import pytest
+
+from core.judgement.levers import levers
+from core.judgement.shapes import LeverFigure
+from tests.support.log_cases import context
+
+ORDER = ["fio2", "mask", "secretions", "time_on_mask", "pressure_support", "backup_rate", "inspiratory_time", "epap"]
+ACIDOTIC = "03:00 ph 7.26 paco2 72\n"
+
+
+def found(more: str = "", *, indication: str = "copd", start: str = "mode BPAP-ST ipap 16 epap 5 fio2 28%",
+          as_of: str = "04:00") -> dict[str, LeverFigure]:  # fmt: skip
+    log = f"01:00 rr 30 indication '{indication}'\n02:00 {start}\n{more}"
+    return {lever.key: lever for lever in levers(context(log, as_of))}
+
+
+def keys(lever: LeverFigure) -> list[str]:
+    return [m.key.removeprefix("lever.") for m in (*lever.why, *lever.limits)]
+
+
+def test_the_order_and_that_a_person_decides() -> None:
+    figures = levers(context("01:00 rr 30\n02:00 mode BPAP-ST ipap 16 epap 5", "03:00"))
+    assert [f.key for f in figures] == ORDER
+    for figure in figures:
+        assert figure.why
+        assert figure.limits[-1].key == "lever.qualified_person_decides"
+
+
+@pytest.mark.parametrize("log", ["01:00 rr 30", "01:00 rr 30\n02:00 mode CPAP cpap 8\n03:00 stopped"])
+def test_none_before_or_after_support(log: str) -> None:
+    assert levers(context(log, "04:00")) == ()
+
+
+def test_oxygen_above_need_within_range_and_below() -> None:
+    above = found("03:55 spo2 97")["fio2"]
+    assert above.can_act
+    assert keys(above)[0] == "oxygen_above_need"
+    within = found("03:55 spo2 90")["fio2"]
+    assert not within.can_act
+    below = found("03:55 spo2 84")["fio2"]
+    assert below.can_act
+    assert keys(below)[:2] == ["spo2_below_range", "hypercapnic_risk"]
+    assert keys(found()["fio2"])[0] == "spo2_not_known"
+    full = found("03:55 spo2 84", start="mode CPAP cpap 8 fio2 100%")["fio2"]
+    assert not full.can_act
+    room = found("03:55 spo2 97", start="mode CPAP cpap 8 fio2 21%")["fio2"]
+    assert not room.can_act
+
+
+def test_leak_comes_before_pressure() -> None:
+    leaking = found(
+        ACIDOTIC + "device leak 02:00 04:00 50 50",
+        start="mode BPAP-ST ipap 16 epap 5 leak_definition unintentional",
+    )
+    assert leaking["mask"].can_act
+    assert keys(leaking["mask"])[0] == "leak_over_limit"
+    assert leaking["pressure_support"].can_act
+    assert "leak_first" in keys(leaking["pressure_support"])
+
+
+def test_a_leak_nobody_defined_is_no_reason_to_act() -> None:
+    mask = found("device leak 02:00 04:00 50 50")["mask"]
+    assert not mask.can_act
+    assert keys(mask)[0] == "leak_definition_not_known"
+
+
+def test_a_low_epap_does_not_clear_the_port() -> None:
+    mask = found(start="mode BPAP-ST ipap 14 epap 3")["mask"]
+    assert mask.can_act
+    assert "port_not_cleared" in keys(mask)
+
+
+def test_secretions_and_sedation() -> None:
+    assert found("03:00 secretions")["secretions"].can_act
+    assert not found()["secretions"].can_act
+
+
+def test_time_on_the_mask_counts_only_while_acidotic() -> None:
+    off = "02:30 mask_off\n03:00 mask_on\n03:35 ph 7.26 paco2 72"
+    lever = found(off)["time_on_mask"]
+    assert lever.can_act
+    assert keys(lever)[0] == "little_mask_time"
+    assert not found(off.replace("7.26", "7.40"))["time_on_mask"].can_act
+
+
+def test_pressure_support_and_its_limits() -> None:
+    lever = found(ACIDOTIC)["pressure_support"]
+    assert lever.can_act
+    assert lever.present is not None
+    assert lever.present.values["pressure_support"] == 11
+    full = found(ACIDOTIC, start="mode BPAP-ST ipap 30 epap 5")["pressure_support"]
+    assert not full.can_act
+    assert "review_ipap" in keys(full)
+    assert not found("03:00 ph 7.40 paco2 50")["pressure_support"].can_act
+    cpap = found(ACIDOTIC, start="mode CPAP cpap 8")["pressure_support"]
+    assert cpap.can_act
+    assert "no_pressure_support" in keys(cpap)
+
+
+def test_a_high_tidal_volume_limits_pressure_in_hypoxaemia() -> None:
+    more = "02:30 height 175 sex male\n03:00 ph 7.30 paco2 50 pao2 60\ndevice vte 02:00 04:00 720 720"
+    lever = found(more, start="mode BPAP-ST ipap 16 epap 8 fio2 50%", indication="pneumonia")["pressure_support"]
+    assert "high_tidal_volume" in keys(lever)
+
+
+def test_a_rate_only_where_it_would_take_effect() -> None:
+    start = "mode BPAP-ST ipap 16 epap 5 rate_set 14"
+    fast = found(ACIDOTIC + "03:50 rr 28", start=start)["backup_rate"]
+    assert not fast.can_act
+    assert keys(fast)[0] == "rate_no_effect"
+    slow = found(ACIDOTIC + "03:50 rr 12", start=start)["backup_rate"]
+    assert slow.can_act
+    assert "traps_air" in keys(slow)
+    spontaneous = found(ACIDOTIC + "03:50 rr 12", start="mode BPAP-S ipap 16 epap 5")["backup_rate"]
+    assert not spontaneous.can_act
+
+
+def test_a_longer_inspiration_never_in_copd() -> None:
+    copd = found(ACIDOTIC)["inspiratory_time"]
+    assert not copd.can_act
+    assert keys(copd)[0] == "traps_air"
+    weak = found(ACIDOTIC, indication="neuromuscular", start="mode BPAP-ST ipap 16 epap 5 ti 1.0")["inspiratory_time"]
+    assert weak.can_act
+    long = found(ACIDOTIC, indication="neuromuscular", start="mode BPAP-ST ipap 16 epap 5 ti 1.6")["inspiratory_time"]
+    assert not long.can_act
+
+
+def test_epap_with_ipap_alike() -> None:
+    lever = found("03:55 spo2 84")["epap"]
+    assert lever.can_act
+    assert keys(lever)[:2] == ["hypoxaemia", "raise_ipap_alike"]
+    assert not found("03:55 spo2 84", start="mode BPAP-ST ipap 20 epap 8")["epap"].can_act
+    assert not found("03:55 spo2 91")["epap"].can_act
+    obese = found(ACIDOTIC, indication="obesity hypoventilation")["epap"]
+    assert "upper_airway" in keys(obese)
