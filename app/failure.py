@@ -6,6 +6,7 @@ import errno
 import logging
 import traceback
 from dataclasses import dataclass
+from pathlib import Path
 
 from core.record.message import Message, RecordError
 from storage.errors import StoreError
@@ -53,6 +54,8 @@ def failure_of(error: BaseException, subject: str = "", number: int = 0) -> Fail
         return Failure(error.message, subject, number)
     if isinstance(error, OSError) and error.filename is not None:
         key = _FILE_KEYS.get(error.errno or 0, "file.failed")
+        if key == "file.missing" and not Path(str(error.filename)).parent.is_dir():
+            key = "file.no_folder"
         values = {"path": str(error.filename), "detail": error.strerror or str(error)}
         return Failure(Message(key, values), subject, number)
     if isinstance(error, OSError) and error.errno in (errno.ENOSPC, errno.EDQUOT):

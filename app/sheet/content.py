@@ -24,6 +24,8 @@ CAUTION = (
     "Supports and never replaces clinical judgement. It is no alarm and no monitor. Local policy and licensed "
     "practice come first. Sources marked 'from memory' or 'common practice' are to be confirmed locally."
 )
+_STATES = {"severe": "Severe acidosis", "acidotic": "Acidotic", "resolved": "Not acidotic"}
+"""A gas that is not acidotic may still be a bad one: in a heading "resolved" would say too much."""
 _STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
 Fact = tuple[str, str]
 
@@ -200,17 +202,18 @@ class _Writer:
             return "No arterial or capillary gas recorded."
         last = gases[-1]
         off = ", off support" if last.off_support else ""
-        state = last.state or "state not known"
+        pf = f", P/F {self._lines.pressure(last.pf_mmHg)}" if last.pf_mmHg is not None else ""
         return (
-            f"{state.capitalize()}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)} "
-            f"at {self._moment(last.at)}"
+            f"{_STATES.get(last.state or '', 'State not known')}{off}: pH {self._lines.ph(last)}, "
+            f"PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
         )
 
     def _change_of_state(self, s: ShiftFigures) -> str:
         before, after = s.state_before, s.state_after
         if s.began and after:
-            return f"support started this shift, now {after}"
-        return f"{before} to {after} this shift" if before and after and before != after else ""
+            return "support started this shift"
+        changed = before and after and before != after
+        return f"{_STATES[before].lower()} before, now {_STATES[after].lower()}" if changed else ""
 
     def _latest_response(self, f: EpisodeFigures) -> str:
         judged = [r for r in f.responses if r.headline not in ("not yet known", "not judged")]

@@ -99,8 +99,10 @@ class Press:
         self.painter.setBrush(Qt.BrushStyle.NoBrush)
         self.painter.drawPolyline(QPolygonF([QPointF(x * self.unit, y * self.unit) for x, y in points]))
 
-    def box(self, x: float, y: float, width: float, height: float, *, fill: str = "", weight: float = 0.0,
-            ink: str = INK, pattern: Qt.BrushStyle = Qt.BrushStyle.SolidPattern, round_by: float = 0.0) -> None:  # fmt: skip
+    def box(
+        self, x: float, y: float, width: float, height: float, *, fill: str = "", weight: float = 0.0,
+        ink: str = INK, pattern: Qt.BrushStyle = Qt.BrushStyle.SolidPattern, round_by: float = 0.0,
+    ) -> None:  # fmt: skip
         """A rectangle, filled, framed, or both."""
         brush = QBrush(QColor(fill), pattern) if fill else QBrush(Qt.BrushStyle.NoBrush)
         if fill and pattern is not Qt.BrushStyle.SolidPattern:

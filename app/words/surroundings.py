@@ -10,6 +10,7 @@ _CHAIN = (
 )
 
 TEMPLATES: Final[dict[str, str]] = {
+    "demo.sample_refused": "The sample shift cannot be taken in: {detail}.",
     "error.unexpected": "Something went wrong in the program: {detail}. Nothing was recorded by this step.",
     "file.binary": "The file is not text: it holds NUL bytes. Accepted: {accepted}.",
     "file.disk_full": "The disk is full: [[{path} ]]could not be written. Make room and try again.",
@@ -19,8 +20,12 @@ TEMPLATES: Final[dict[str, str]] = {
     "file.is_folder": "{path} is a folder. Name a file.",
     "file.missing": "{path} is not there.",
     "file.name_too_long": "The name {path} is too long for this disk.",
+    "file.no_folder": "The folder of {path} is not there.",
     "file.not_allowed": "{path} may not be opened or written by you. Choose another place or ask who owns it.",
     "file.read_only_disk": "{path} lies on a disk that takes no writing. Choose another place.",
+    "handover.backwards": "The shift ends ({end:time}) before it starts ({start:time}).",
+    "handover.paper": "'{paper}' is no paper. Accepted: {accepted}.",
+    "handover.too_long": "A shift of {hours:0} h is too long: at most {accepted} h are accepted.",
     "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
     "intake.refused": "{path} was not taken: {rows} row(s) refused. Accepted: {accepted}.",
     "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}). "
@@ -39,6 +44,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.disk_full": "The disk is full: nothing was recorded in {path}. Make room and try again.",
     "store.exists": "{path} exists already and is never overwritten. Name another file.",
     "store.failed": "{path} could not be used: {detail}.",
+    "store.export_failed": "{path} could not be written: {detail}.",
     "store.file_gone": "{path} is no longer there. Was it moved, or a disk taken out?",
     "store.missing": "There is no store {path}. Take in a file to make one, or name another.",
     "store.needs_passphrase": "{path} is encrypted. Give its passphrase (--passphrase-fd N).",

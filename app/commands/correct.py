@@ -1,0 +1,90 @@
+"""`luffmark correct EPISODE [ENTRY] ...`: correct, withdraw or move an entry, or list those that count."""
+
+from __future__ import annotations
+
+import argparse
+import sys
+
+from app.commands.context import Context
+from app.formats import quantity, wall
+from app.operations import entry as operations
+from app.operations import episode as episodes
+from app.operations.outcome import Outcome
+from app.words import Reader
+from core.record.channels import CHANNELS, Kind
+from core.record.entries import Entry
+from core.record.episode import Episode
+from core.record.local_time import zoned_iso
+from core.record.message import refuse
+from storage.store import Store
+
+SHORT_ID = 8
+
+
+def run(context: Context, args: argparse.Namespace) -> int:
+    """Supersede one entry with a reason, or list the episode's entries."""
+    reader = context.reader()
+    wanted = sum((args.value is not None or args.at is not None, args.withdraw, args.move_to is not None))
+    if args.entry is not None and wanted != 1:
+        print("luffmark: say what is right: --value (with --unit) and/or --at, or --withdraw, or --move-to EPISODE",
+              file=sys.stderr)  # fmt: skip
+        return 2
+    with context.open(read_only=args.entry is None) as store:
+        record = episodes.load(store, args.episode)
+        if args.entry is None:
+            return _list(context, record, reader)
+        entry_id = _whole_id(record, args.entry)
+        outcome = _supersede(context, store, args, entry_id)
+    made = outcome.value
+    context.answer(f"Done: {made.entries[0].action} of {CHANNELS[made.entries[0].channel].name} in {made.episode}.",
+                   {"episode": made.episode, "ids": list(made.ids), "head": outcome.head})  # fmt: skip
+    return 0
+
+
+def _supersede(
+    context: Context, store: Store, args: argparse.Namespace, entry_id: str
+) -> Outcome[operations.Recorded]:
+    now, who = context.now(), context.by
+    if args.withdraw:
+        withdrawal = operations.WithdrawalRequest(args.episode, entry_id, args.reason)
+        return operations.withdraw(store, who, now, withdrawal)
+    if args.move_to is not None:
+        move = operations.MoveRequest(args.episode, entry_id, args.move_to, args.reason)
+        return operations.move(store, who, now, move)
+    correction = operations.CorrectionRequest(
+        args.episode, entry_id, args.reason, args.value, args.unit, args.at, args.yes
+    )
+    return operations.correct(store, who, now, correction)
+
+
+def _whole_id(record: Episode, start: str) -> str:
+    """The one entry whose id begins so.
+
+    Raises:
+        RecordError: `correction.unknown_entry`, `correction.many_entries`.
+    """
+    found = [s.entry.id for s in record.standing if s.entry.id.startswith(start)]
+    if len(found) > 1:
+        raise refuse("correction.many_entries", entry=start, count=len(found), accepted="more letters of the id")
+    if not found:
+        raise refuse("correction.unknown_entry", entry=start, accepted=f"luffmark correct {record.key} lists them")
+    return found[0]
+
+
+def _list(context: Context, record: Episode, reader: Reader) -> int:
+    entries = [s.entry for s in record.standing]
+    rows = [f"{e.id[:SHORT_ID]}  {wall(e.at, reader.zone)}  {CHANNELS[e.channel].name}  {_value(e, reader)}  {e.by}"
+            for e in entries]  # fmt: skip
+    value = {"episode": record.key, "entries": [
+        {"id": e.id, "at": zoned_iso(e.at, reader.zone), "channel": e.channel, "value": e.number if e.words is None
+         else e.words, "unit": CHANNELS[e.channel].unit, "by": e.by} for e in entries]}  # fmt: skip
+    context.answer("\n".join(rows) or "No entries.", value)
+    return 0
+
+
+def _value(e: Entry, reader: Reader) -> str:
+    if CHANNELS[e.channel].kind is Kind.INSTANT and e.number is not None:
+        return wall(int(e.number), reader.zone)
+    if e.number is None and e.words is None:
+        return ""
+    return quantity(e.channel, e.words if e.number is None else e.number, reader.gas_unit)
