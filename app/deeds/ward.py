@@ -5,7 +5,11 @@ from __future__ import annotations
 from pathlib import Path
 
 from app.deeds.doer import Doer
+from app.failure import Failure, failure_of
+from app.operations import handover
+from app.operations.outcome import Outcome
 from app.ward.ordering import Order, Shown
+from app.words import sentence
 
 
 class WardDeeds(Doer):
@@ -64,21 +68,35 @@ class WardDeeds(Doer):
     # handover
 
     def show_handover_text(self) -> None:
-        """Fill the handover page from the figures that the ward shows."""
-        feed = self.window.feed
-        if feed is not None:
-            self.pages.handover.show_ward(feed.content(), feed.answers, self.window.reader)
+        """Gather this shift and show it."""
+        self.pages.handover.say(self.tr("Gathering the shift..."))
+        self.model.ask(handover.prepare, self._request(), done=self._gathered, failed=self._not_gathered,
+                       subject="handover")  # fmt: skip
+
+    def _request(self) -> handover.HandoverRequest:
+        shift, session = self.window.shift(), self.model.session
+        return handover.HandoverRequest(shift.start, min(shift.end, session.moment()), session.as_known_at)
+
+    def _gathered(self, outcome: Outcome[handover.Handover]) -> None:
+        from app.sheet.content import sheet_content
+
+        self.pages.handover.show_content(sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person))
+
+    def _not_gathered(self, failure: Failure) -> None:
+        self.pages.handover.say(sentence(failure.message, self.window.reader))
 
     def save_handover(self, path: Path) -> None:
         """Write the sheet of this shift."""
-        from app.operations import handover
-
-        shift = self.window.shift()
-        session = self.model.session
-        end = min(shift.end, session.moment())
-        request = handover.HandoverRequest(shift.start, end, session.zone)
         self._path = path
-        self.model.ask(handover.of_shift, request, done=self._saved, subject="handover")
+        self.model.ask(handover.prepare, self._request(), done=self._print, subject="handover sheet")
 
-    def _saved(self, outcome: object) -> None:
+    def _print(self, outcome: Outcome[handover.Handover]) -> None:
+        from app.sheet.content import sheet_content
+        from app.sheet.pdf import write_pdf
+
+        try:
+            write_pdf(sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person), self._path)
+        except OSError as error:
+            self.window.show_failure(failure_of(error))
+            return
         self.window.say(self.tr("{path} was written.").format(path=self._path))

@@ -1,0 +1,90 @@
+"""The handover on screen: the words of the printed sheet, to be read aloud; one key saves the sheet."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt, QUrl, Signal
+from PySide6.QtGui import QKeyEvent
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QTextBrowser, QVBoxLayout, QWidget
+
+from app.handover.page_html import page_html
+from app.sheet.content import SheetContent
+from app.theme import Theme
+
+
+class HandoverView(QWidget):
+    """Shows a SheetContent."""
+
+    save_wanted = Signal()
+    back = Signal()
+
+    def __init__(self, theme: Theme) -> None:
+        super().__init__()
+        self._theme = theme
+        self._content: SheetContent | None = None
+        px = theme.px
+        self.title = QLabel(self.tr("Handover"))
+        self.title.setProperty("role", "title")
+        self.state = QLabel()
+        self.state.setProperty("role", "quiet")
+        self.copy = QPushButton(self.tr("Copy text"))
+        self.save = QPushButton(self.tr("Save as PDF...  Ctrl+P"))
+        self.save.setAccessibleName(self.tr("Save the handover sheet as PDF"))
+        for button in (self.copy, self.save):
+            button.setProperty("role", "small")
+        self.text = QTextBrowser()
+        self.text.setFrameShape(QFrame.Shape.NoFrame)
+        self.text.setAccessibleName(self.tr("Handover"))
+        self.text.setOpenLinks(False)
+        self.text.document().setDocumentMargin(px(20))
+        head = QHBoxLayout()
+        head.setSpacing(px(12))
+        head.addWidget(self.title)
+        head.addWidget(self.state)
+        head.addStretch(1)
+        head.addWidget(self.copy)
+        head.addWidget(self.save)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(px(16), px(4), px(16), px(4))
+        column.setSpacing(px(6))
+        column.addLayout(head)
+        column.addWidget(self.text, 1)
+        self.text.anchorClicked.connect(self._go)
+        self.copy.clicked.connect(self._copy)
+        self.save.clicked.connect(self.save_wanted)
+
+    def set_theme(self, theme: Theme) -> None:
+        """Take another look or text size."""
+        self._theme = theme
+        if self._content is not None:
+            self.show_content(self._content)
+
+    def show_content(self, content: SheetContent) -> None:
+        """Show a handover, keeping the place that was read."""
+        bar = self.text.verticalScrollBar()
+        place = bar.value() if self._content is not None else 0
+        self._content = content
+        self.state.setText("")
+        self.text.setHtml(page_html(content, self._theme))
+        bar.setValue(place)
+
+    def say(self, text: str) -> None:
+        """Say that the handover is being gathered, or why it cannot be."""
+        self.state.setText(text)
+
+    def plain(self) -> str:
+        """The page in plain words."""
+        return self.text.toPlainText()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.back.emit()
+            return
+        super().keyPressEvent(event)
+
+    def _go(self, url: QUrl) -> None:
+        self.text.scrollToAnchor(url.fragment())
+
+    def _copy(self) -> None:
+        from PySide6.QtGui import QGuiApplication
+
+        QGuiApplication.clipboard().setText(self.plain())
