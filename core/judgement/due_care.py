@@ -1,0 +1,65 @@
+"""Care that is due while support runs: a reassessment, the skin under the mask."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import replace
+
+import numpy as np
+
+from core.judgement.due_item import Item
+from core.judgement.markers.observed import Observed
+from core.record.instant import MINUTE, Instant
+from core.record.message import Message
+
+NO_SKIN_UNDER = frozenset({"helmet", "mouthpiece"})
+
+
+def _begun(seen: Observed) -> Instant | None:
+    """From when care is counted: the start, or the first entry where support ran already."""
+    start, first = seen.support.start, seen.episode.first_at
+    if start is None or start > seen.as_of:
+        return None
+    return start if first is None else max(start, first)
+
+
+def skin_items(seen: Observed) -> Iterator[Item]:
+    """A look at the skin under the mask at intervals of wear; breaks do not count as a look."""
+    rule = seen.policy.due.get("skin_check")
+    begun = _begun(seen)
+    if rule is None or not rule.on or begun is None:
+        return
+    looks = [int(t) for t in seen.episode.text("skin_check").t if int(t) > begun]
+    ends = [*looks, None]
+    for last, done in zip([begun, *looks], ends, strict=True):
+        if (seen.settings.at(done or seen.as_of).interface or "") in NO_SKIN_UNDER:
+            continue
+        item = Item("skin_check", Message("due.skin_check", {"last_at": last}), last + int(rule.from_min * MINUTE),
+                    last + int(rule.until_min * MINUTE), rule.soon_min)  # fmt: skip
+        yield item if done is None else replace(item, done_at=done)
+
+
+def assessed(seen: Observed) -> list[Instant]:
+    """The moments at which a person looked at the patient: a review, a check, or a counted rate."""
+    words = (seen.episode.text(c).t for c in ("review", "checked_no_change"))
+    counted = seen.series("rr").spots.t
+    return sorted({int(t) for t in np.concatenate((*words, counted))})
+
+
+def reassessment_item(seen: Observed) -> Item | None:
+    """The next look at the patient: an hour after the newest start or change, then every few hours."""
+    rule = seen.policy.due.get("reassessment")
+    begun = _begun(seen)
+    if rule is None or not rule.on or begun is None:
+        return None
+    anchor = max((r.anchor_at for r in seen.ctx.responses if r.effects), default=begun)
+    anchor = max(anchor, begun)
+    looks = assessed(seen)
+    after = [t for t in looks if t >= anchor + int(rule.from_min * MINUTE)]
+    if not after:
+        because = Message("due.reassessment", {"anchor_at": anchor, "last_at": looks[-1] if looks else None})
+        return Item("reassessment", because, anchor + int(rule.from_min * MINUTE),
+                    anchor + int(rule.until_min * MINUTE), rule.soon_min, anchor_at=anchor)  # fmt: skip
+    last, every = after[-1], int(rule.limits["every_min"] * MINUTE)
+    because = Message("due.reassessment", {"anchor_at": anchor, "last_at": last})
+    return Item("reassessment", because, last + every - int(rule.until_min * MINUTE), last + every, rule.soon_min)

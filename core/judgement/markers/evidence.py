@@ -1,0 +1,137 @@
+"""What a flag rests on: one message for each fact, with the values its sentence needs.
+
+`KEYS` names every message key of markers, due items and the order of concern with its values; a test holds the
+code to it. Pressures in mmHg beside the limit's kPa form, rates per minute, instants in names that end in `at`.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from types import MappingProxyType
+from typing import Final
+
+from core.judgement.policy_sections import PressureLimit
+from core.judgement.shapes import GasFigure
+from core.physiology.pressure import above_pressure_limit, below_pressure_limit
+from core.record.instant import Instant
+from core.record.message import Message, Value
+
+BELOW, ABOVE, AT_MOST, AT_LEAST = "below", "above", "at or below", "at or above"
+
+KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
+    {
+        "evidence.value": ("quantity", "value", "relation", "limit", "limit_kpa", "at", "text"),
+        "evidence.change": ("quantity", "before", "before_at", "after", "at", "change", "noise", "direction"),
+        "evidence.timing": ("anchor", "anchor_at", "minutes"),
+        "evidence.sustained": ("quantity", "relation", "limit", "minutes", "since", "median", "counted"),
+        "evidence.twice": ("quantity", "first", "first_at", "second", "second_at", "low", "high"),
+        "evidence.score": ("score", "points", "lowest", "highest", "limit", "at", "missing"),
+        "evidence.failed_percent": ("score", "points", "percent"),
+        "evidence.support": ("quantity", "value", "relation", "limit"),
+        "evidence.no_reason_logged": (),
+        "evidence.event": ("event", "at", "text"),
+        "evidence.hours": ("what", "hours", "limit"),
+        "evidence.share": ("percent", "limit", "minutes", "breaks"),
+        "evidence.unknown": ("quantity",),
+        "evidence.stale": ("quantity", "at", "age_min"),
+        "evidence.gas_doubt": ("doubt", "at"),
+        "evidence.range": ("low", "high", "prescribed"),
+        "evidence.off_support": ("at",),
+        "evidence.venous": ("at",),
+        "evidence.after_beta_agonist": ("at", "text"),
+        "evidence.think_of": ("what",),
+        "evidence.support_ends": ("at",),
+        "evidence.overdue": ("what", "until", "because"),
+        "evidence.success": ("since", "hours"),
+        "evidence.outside_population": ("population",),
+        "evidence.ceiling": ("ceiling",),
+        "due.gas_after_start": ("anchor_at",),
+        "due.gas_reference": ("anchor_at",),
+        "due.gas_after_change": ("anchor_at", "steps"),
+        "due.gas_after_chain": ("anchor_at", "steps"),
+        "due.gas_after_break": ("anchor_at",),
+        "due.repeat_gas": ("gas_at", "ph", "state"),
+        "due.confirm_arterially": ("gas_at", "ph"),
+        "due.reassessment": ("anchor_at", "last_at"),
+        "due.skin_check": ("last_at",),
+        "due.mask_check": ("marker", "since"),
+        "due.oxygen_review": ("marker", "since"),
+        "due.complete_score": ("score", "gas_at", "missing", "lowest", "highest", "limit"),
+        "due.ceiling": ("started_at",),
+        "due.break_end": ("break_at", "hours"),
+        "due.probable_break": ("break_at", "end_at"),
+        "due.spo2_recheck": ("spo2", "at", "low", "high"),
+        "concern.flag": ("marker", "tier", "since", "more", "state"),
+        "concern.overdue": ("what", "until"),
+        "concern.due_soon": ("what", "until"),
+        "concern.ended": ("ended_at", "by"),
+    }
+)
+
+
+def value_is(
+    quantity: str, value: float, relation: str, limit: float, at: Instant, text: str | None = None,
+    limit_kpa: float | None = None,
+) -> Message:  # fmt: skip
+    """A value against its limit."""
+    values: dict[str, Value] = {"quantity": quantity, "value": value, "relation": relation, "limit": limit,
+              "limit_kpa": limit_kpa, "at": at, "text": text}  # fmt: skip
+    return Message("evidence.value", values)
+
+
+def pressure_is(quantity: str, mmhg: float, relation: str, limit: PressureLimit, at: Instant) -> Message:
+    """A gas pressure against its paired limit."""
+    return value_is(quantity, mmhg, relation, limit.mmHg, at, None, limit.kpa)
+
+
+def changed(
+    quantity: str, before: float, before_at: Instant, after: float, at: Instant, noise: float | None = None
+) -> Message:
+    """A value against an earlier one. `direction`: up, down or inside noise."""
+    change = round(after - before, 6)
+    inside = noise is not None and round(abs(change) - noise, 6) <= 0
+    direction = "inside noise" if inside else "up" if change > 0 else "down" if change < 0 else "unchanged"
+    values: dict[str, Value] = {"quantity": quantity, "before": before, "before_at": before_at, "after": after,
+              "at": at, "change": change, "noise": noise, "direction": direction}  # fmt: skip
+    return Message("evidence.change", values)
+
+
+def timing(anchor: str, anchor_at: Instant, minutes: float) -> Message:
+    """How long after a start or change."""
+    return Message("evidence.timing", {"anchor": anchor, "anchor_at": anchor_at, "minutes": minutes})
+
+
+def sustained(
+    quantity: str, relation: str, limit: float, minutes: float, since: Instant, median: float, counted: bool = False
+) -> Message:
+    """A crossing that lasted. `median` of the values past the limit; `counted` where people took them."""
+    values: dict[str, Value] = {"quantity": quantity, "relation": relation, "limit": limit, "minutes": minutes,
+              "since": since, "median": median, "counted": counted}  # fmt: skip
+    return Message("evidence.sustained", values)
+
+
+def unknown(quantity: str) -> Message:
+    """A value that would be needed and is not known."""
+    return Message("evidence.unknown", {"quantity": quantity})
+
+
+def gas_doubts(gas: GasFigure) -> tuple[Message, ...]:
+    """What makes a gas doubtful. A doubt is always shown."""
+    named = (
+        ("unconfirmed", gas.doubt),
+        ("inconsistent", gas.consistent is False),
+        ("corrected", gas.corrected),
+        ("disputed", gas.disputed),
+        ("site assumed", gas.site_assumed),
+    )
+    return tuple(Message("evidence.gas_doubt", {"doubt": d, "at": gas.at}) for d, true in named if true)
+
+
+def is_below(mmhg: float, limit: PressureLimit) -> bool:
+    """Whether a gas pressure is below a paired limit, in tenths of a kPa; NaN never is."""
+    return bool(below_pressure_limit(mmhg, limit.kpa))
+
+
+def is_above(mmhg: float, limit: PressureLimit) -> bool:
+    """Whether a gas pressure is above a paired limit, in tenths of a kPa; NaN never is."""
+    return bool(above_pressure_limit(mmhg, limit.kpa))

@@ -1,0 +1,203 @@
+"""What markers look at: the judged record of one episode, with what several of them need found once."""
+
+from __future__ import annotations
+
+from bisect import bisect_right
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from functools import cached_property
+from math import isnan
+from typing import Any, TypeVar
+
+import numpy as np
+
+from core.judgement.context import Context
+from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
+from core.judgement.policy import Policy
+from core.judgement.probable_breaks import in_any, probable_breaks
+from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure, SinceStart
+from core.judgement.vitals_near import Found, VitalsNear
+from core.record.channels import HYPERCAPNIC_RISK
+from core.record.episode import Episode, Series
+from core.record.instant import MINUTE, Instant
+from core.record.samples import Flags, Times, Values
+from core.record.settings import ROOM_AIR, SettingsInForce, Steps
+from core.record.support import Break, SupportTime
+
+Finding = TypeVar("Finding")
+
+
+@dataclass(frozen=True, slots=True)
+class Attributed:
+    """A gas as it judges one anchor."""
+
+    response: ResponseFigure
+    judged: JudgedGas
+
+
+@dataclass(frozen=True)
+class Observed:
+    """The context of one episode and what markers find in it. Holds nothing later than `as_of`."""
+
+    ctx: Context
+    _found: dict[Callable[[Any], Any], Any] = field(default_factory=dict)
+
+    def once(self, find: Callable[[Observed], Finding]) -> Finding:
+        """What `find` gives for this record, computed the first time only: several markers share it."""
+        if find not in self._found:
+            self._found[find] = find(self)
+        found: Finding = self._found[find]
+        return found
+
+    @property
+    def episode(self) -> Episode:
+        """The record as of the moment."""
+        return self.ctx.episode
+
+    @property
+    def policy(self) -> Policy:
+        """The policy in force."""
+        return self.ctx.policy
+
+    @property
+    def support(self) -> SupportTime:
+        """When support ran."""
+        return self.ctx.support
+
+    @property
+    def settings(self) -> SettingsInForce:
+        """Settings as step functions."""
+        return self.ctx.settings
+
+    @property
+    def as_of(self) -> Instant:
+        """The moment of the figures."""
+        return self.ctx.as_of
+
+    @cached_property
+    def gases(self) -> tuple[GasFigure, ...]:
+        """Arterial and capillary gases, by time: those whose pH and PCO2 judge."""
+        return tuple(g for g in self.ctx.gases if g.site in STANDS_FOR_ARTERIAL)
+
+    @cached_property
+    def on_support_gases(self) -> tuple[GasFigure, ...]:
+        """Those drawn on support."""
+        return tuple(g for g in self.gases if self.drawn_on_support(g))
+
+    def drawn_on_support(self, gas: GasFigure) -> bool:
+        """Whether a gas was drawn after support began, not in a break or soon after one, nor after its end."""
+        start = self.support.start
+        if start is None or gas.off_support:
+            return False
+        after = gas.at // MINUTE > start // MINUTE
+        return after or (not self.support.start_recorded and gas.at >= start)
+
+    @cached_property
+    def _gas_moments(self) -> list[Instant]:
+        return [g.at for g in self.gases]
+
+    def gas_at(self, at: Instant) -> GasFigure | None:
+        """The newest arterial or capillary gas at or before a moment."""
+        i = bisect_right(self._gas_moments, at)
+        return self.gases[i - 1] if i else None
+
+    def gases_before(self, gas: GasFigure, within: Instant) -> tuple[GasFigure, ...]:
+        """The arterial or capillary gases before one, at most `within` microseconds older."""
+        i, j = bisect_right(self._gas_moments, gas.at - within - 1), bisect_right(self._gas_moments, gas.at - 1)
+        return self.gases[i:j]
+
+    @cached_property
+    def start_baseline(self) -> GasFigure | None:
+        """The gas that the start of support is judged against."""
+        first = self.ctx.responses[0] if self.ctx.responses else None
+        if first is None or first.anchor != "start" or first.baseline_at is None:
+            return None
+        return next((g for g in self.gases if g.at == first.baseline_at), None)
+
+    @cached_property
+    def attributed(self) -> dict[Instant, list[Attributed]]:
+        """By gas: the anchors whose effect it judges."""
+        found: dict[Instant, list[Attributed]] = {}
+        for response in self.ctx.responses:
+            for judged in response.gases:
+                if judged.attributable:
+                    found.setdefault(judged.at, []).append(Attributed(response, judged))
+        return found
+
+    @cached_property
+    def since_start(self) -> dict[Instant, SinceStart]:
+        """By gas: how it compares with the start."""
+        return {j.at: j.since_start for r in self.ctx.responses for j in r.gases}
+
+    @cached_property
+    def vitals(self) -> VitalsNear:
+        """Rate and SpO2 near a moment."""
+        return VitalsNear(self.episode, self.policy)
+
+    def rate_near(self, at: Instant) -> Found | None:
+        """The respiratory rate nearest to a moment, not later than `as_of`."""
+        return self.vitals.rate(at, 0, self.as_of)
+
+    def series(self, channel: str) -> Series:
+        """The known values of a channel."""
+        found = self.episode.number(channel)
+        known = np.isfinite(found.v)
+        return found if known.all() else found.cut(known)
+
+    @cached_property
+    def suspected_breaks(self) -> tuple[Break, ...]:
+        """Breaks that nobody logged."""
+        return probable_breaks(self.ctx)
+
+    def off_mask(self, times: Times) -> Flags:
+        """Whether each time lies in a logged or a probable break, shape (n,)."""
+        return in_any(times, (*self.support.breaks, *self.suspected_breaks))
+
+    def worn(self, times: Times, after_min: float = 0.0) -> Flags:
+        """Whether support ran on the patient at each time, `after_min` minutes after its start and later."""
+        start, end = self.support.start, self.support.end
+        if start is None:
+            return np.zeros(times.shape, np.bool_)
+        inside: Flags = times >= start + int(after_min * MINUTE)
+        if end is not None:
+            inside &= times < end
+        return inside & ~self.off_mask(times)
+
+    @cached_property
+    def risk_since(self) -> Instant | None:
+        """Since when hypercapnic risk is known: by indication from the beginning, else by a gas that shows it."""
+        if self.ctx.indication in HYPERCAPNIC_RISK:
+            return 0
+        return next((g.at for g in self.gases if g.hypercapnic), None)
+
+    def targets(self, times: Times) -> tuple[Values, Values]:
+        """The SpO2 range in force at each time, shapes (n,): as prescribed then, else as the risk calls for."""
+        low, high = self._stepped("target_spo2_low", times), self._stepped("target_spo2_high", times)
+        o = self.policy.oxygen
+        risk = high <= o.risk_target_high.value
+        if self.risk_since is not None:
+            risk |= times >= self.risk_since
+        low_default = np.where(risk, o.risk_target_low.value, o.target_low.value)
+        high_default = np.where(risk, o.risk_target_high.value, o.target_high.value)
+        return np.where(np.isnan(low), low_default, low), np.where(np.isnan(high), high_default, high)
+
+    def _stepped(self, channel: str, times: Times) -> Values:
+        series = self.episode.number(channel)
+        return Steps(series.t, series.v).on(times)
+
+    def at_risk(self, times: Times) -> Flags:
+        """Whether hypercapnic risk was known at each time, shape (n,)."""
+        risk: Flags = self._stepped("target_spo2_high", times) <= self.policy.oxygen.risk_target_high.value
+        return risk if self.risk_since is None else risk | (times >= self.risk_since)
+
+    def oxygen_given(self, times: Times) -> Flags:
+        """Whether oxygen was given at each time: FiO2 above room air, or a flow; False where nothing is known."""
+        fio2, flow = self.settings.fio2.on(times), self.settings.o2_flow.on(times)
+        return np.asarray(np.where(np.isnan(fio2), flow > 0, fio2 > ROOM_AIR + 1e-9), np.bool_)
+
+    def on_highest_oxygen(self, gas: GasFigure, fio2: float, flow: float) -> bool | None:
+        """Whether a gas was drawn on at least so much oxygen; None where that is not known."""
+        if gas.fio2 is not None:
+            return gas.fio2 >= fio2 - 1e-9
+        given = self.settings.o2_flow.at(gas.at)
+        return None if isnan(given) else given >= flow

@@ -1,0 +1,60 @@
+"""Who is inside the population that a marker was validated in or is meant for. What is not known is outside."""
+
+from __future__ import annotations
+
+from core.judgement import arms
+from core.judgement.markers.observed import Observed
+from core.judgement.shapes import GasFigure
+from core.record.channels import HYPERCAPNIC_RISK
+from core.record.instant import Instant
+
+_RATE_IS_THE_AIM = frozenset({"neuromuscular", "obesity hypoventilation"})
+
+
+def inside(seen: Observed, population: str, at: Instant) -> bool:
+    """Whether the patient is inside a population at a moment, by the newest gas, the indication and the support."""
+    gas = seen.gas_at(at)
+    indication = seen.ctx.indication
+    match population:
+        case "any":
+            return True
+        case "on support":
+            return _on_support(seen, at)
+        case "acute hypercapnia":
+            return gas is not None and arms.acute_hypercapnia(gas, seen.policy)
+        case "hypercapnic copd":
+            return indication == "copd" and gas is not None and gas.hypercapnic is True
+        case "hypoxaemic, not hypercapnic":
+            return gas is not None and _hypoxaemic(seen, gas, at)
+        case "moderate ards":
+            return gas is not None and _moderate_ards(seen, gas)
+        case "hypercapnic risk":
+            return seen.risk_since is not None or seen.ctx.hypercapnic_risk
+        case "not neuromuscular or obesity hypoventilation":
+            return indication not in _RATE_IS_THE_AIM
+    raise ValueError(f"population {population!r} is not known")
+
+
+def _on_support(seen: Observed, at: Instant) -> bool:
+    return seen.support.on_support(at)
+
+
+def _hypoxaemic(seen: Observed, gas: GasFigure, at: Instant) -> bool:
+    """Hypoxaemic failure on the mask that is not acutely hypercapnic, now or at the start.
+
+    A pH or a PaCO2 that rules acute hypercapnia out must be known.
+    """
+    if not arms.hypoxaemia(gas, seen.policy) or seen.ctx.indication in HYPERCAPNIC_RISK:
+        return False
+    not_acidotic = gas.ph is not None and gas.ph >= seen.policy.state.acidotic_below_ph.value
+    ruled_out = not_acidotic or gas.hypercapnic is False
+    start = seen.start_baseline
+    began_hypercapnic = start is not None and arms.acute_hypercapnia(start, seen.policy)
+    on_mask = _on_support(seen, at) and seen.settings.at(at).mode != "high-flow nasal"
+    return ruled_out and not began_hypercapnic and on_mask
+
+
+def _moderate_ards(seen: Observed, gas: GasFigure) -> bool:
+    """ARDS by indication or as logged, P/F at most 200 on support."""
+    ards = seen.ctx.indication == "ards" or seen.episode.latest_text("pulmonary_ards") == "yes"
+    return ards and gas.pf_mmHg is not None and gas.pf_mmHg <= 200 and seen.drawn_on_support(gas)

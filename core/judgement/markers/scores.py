@@ -1,0 +1,93 @@
+"""Scores as markers: HACOR inside its population, a rise of NEWS2 over the patient's own low."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Iterator
+
+from core.judgement.markers import evidence as say
+from core.judgement.markers.observed import Observed
+from core.judgement.markers.population import inside
+from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.policy_sections import MarkerRule
+from core.judgement.scores import failure_percent
+from core.judgement.shapes import GasFigure, ScoreFigure
+from core.record.instant import MINUTE
+from core.record.message import Message, Value
+
+
+def _hacor(seen: Observed) -> Iterator[tuple[GasFigure, ScoreFigure, list[float]]]:
+    """HACOR at each gas on support, with the minutes from the start and from the anchor it belongs to."""
+    start = seen.support.start
+    for gas in seen.on_support_gases:
+        score = seen.ctx.hacor_at_gases.get(gas.at)
+        if score is None or score.lowest is None:
+            continue
+        after = [a.judged.minutes for a in seen.attributed.get(gas.at, ()) if a.response.effects]
+        if start is not None and seen.support.start_recorded:
+            after.append(gas.at // MINUTE - start // MINUTE)
+        yield gas, score, after
+
+
+def hacor_limit_passed(score: ScoreFigure, limit: float) -> bool:
+    """The lowest possible points are over the limit: what is missing can only add."""
+    return score.lowest is not None and score.lowest > limit
+
+
+def hacor_above_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """HACOR above 5 at 1-2 h after the start or the anchor, by its lowest possible points."""
+    low, high = rule.limits["from_min"], rule.limits["to_min"]
+    return _score_spells(seen, rule, lambda minutes: any(low <= m <= high for m in minutes))
+
+
+def hacor_above_5_later(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """HACOR above 5 later than that: it was also validated at 12, 24 and 48 h."""
+    return _score_spells(seen, rule, lambda minutes: bool(minutes) and min(minutes) > rule.limits["from_min"])
+
+
+def hacor_above_8(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """HACOR above 7: the band in which nine of ten failed, from 45 min after the start on."""
+    return _score_spells(seen, rule, lambda minutes: bool(minutes) and max(minutes) >= rule.limits["from_min"])
+
+
+def _score_spells(
+    seen: Observed, rule: MarkerRule, timely: Callable[[list[float]], bool]
+) -> list[Spell]:
+    limit = rule.limits["points"]
+    points = []
+    for gas, score, minutes in _hacor(seen):
+        fits = score.population == "inside" and inside(seen, rule.population, gas.at)
+        outside = score.population == "outside" or not fits
+        over = hacor_limit_passed(score, limit)
+        if over and not timely(minutes):
+            points.append(Point(gas.at, None))
+            continue
+        shown = over and (fits or rule.outside == "remark")
+        points.append(Point(gas.at, shown, _told(gas, score, limit) if shown else (), outside))
+    return from_points(points)
+
+
+def _told(gas: GasFigure, score: ScoreFigure, limit: float) -> tuple[Message, ...]:
+    values: dict[str, Value] = {
+        "score": "hacor", "points": score.points, "lowest": score.lowest, "highest": score.highest,
+        "limit": limit, "at": gas.at, "missing": ", ".join(score.missing),
+    }  # fmt: skip
+    said = [Message("evidence.score", values)]
+    if score.lowest is not None:
+        percent = failure_percent(score.lowest)
+        failed: dict[str, Value] = {"score": "hacor", "points": score.lowest, "percent": percent}
+        said.append(Message("evidence.failed_percent", failed))
+    return (*said, *say.gas_doubts(gas))
+
+
+def to_complete(seen: Observed) -> tuple[GasFigure, ScoreFigure] | None:
+    """The newest gas on support whose HACOR could pass the limit only with what is missing, inside its population."""
+    rule = seen.policy.markers.get("hacor_above_5")
+    found = [(g, s) for g, s, _ in _hacor(seen)]
+    if rule is None or not found:
+        return None
+    gas, score = found[-1]
+    limit = rule.limits["points"]
+    open_ended = score.points is None and score.highest is not None and score.highest > limit
+    if not open_ended or hacor_limit_passed(score, limit) or score.population != "inside":
+        return None
+    return (gas, score) if inside(seen, rule.population, gas.at) else None

@@ -1,0 +1,47 @@
+"""What is late: a gas, a skin check. Clocks for audit (60 and 120 min to start) are no flags of the night."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from core.judgement.due_care import skin_items
+from core.judgement.due_gas import confirm_items, gas_items, repeat_items
+from core.judgement.due_item import Item
+from core.judgement.markers.observed import Observed
+from core.judgement.markers.spells import Spell
+from core.judgement.policy_sections import MarkerRule
+from core.record.instant import Instant
+from core.record.message import Message, Value
+
+
+def comfort_since(seen: Observed) -> Instant | None:
+    """Since when comfort is the ceiling; None while it is not. Gas dues rest then."""
+    ceiling = seen.episode.text("ceiling_of_care")
+    if not len(ceiling) or ceiling.v[-1] != "comfort":
+        return None
+    i = len(ceiling) - 1
+    while i and ceiling.v[i - 1] == "comfort":
+        i -= 1
+    return int(ceiling.t[i])
+
+
+def _overdue(items: Iterable[Item], as_of: Instant, rest: Instant | None) -> list[Spell]:
+    found = []
+    for item in items:
+        until = min((t for t in (item.done_at, item.awaiting_since, rest) if t is not None), default=None)
+        if as_of <= item.due_until or (until is not None and until <= item.due_until):
+            continue
+        told: dict[str, Value] = {"what": item.what, "until": item.due_until, "because": item.because.key}
+        found.append(Spell(item.due_until, until, (Message("evidence.overdue", told),)))
+    return found
+
+
+def gas_overdue(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
+    """A gas that is past its latest time and whose result is not awaited."""
+    items = [*seen.once(gas_items), *seen.once(repeat_items), *confirm_items(seen)]
+    return _overdue(items, seen.as_of, comfort_since(seen))
+
+
+def skin_check_overdue(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
+    """The skin under the mask was not looked at in time."""
+    return _overdue(skin_items(seen), seen.as_of, None)
