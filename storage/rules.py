@@ -10,11 +10,13 @@ from core.record.channels import CHANNELS, Channel, Group, Kind, channel
 from core.record.entries import Action, NewEntry
 from core.record.knowledge import REPLACING_ACTIONS, VALUE_ACTIONS
 from core.record.message import RecordError, refuse
+from core.record.reading import MAX_TEXT as MAX_WORDS
 from core.record.reading import check_hard
 
 EARLIEST = -2_208_988_800_000_000  # 1900-01-01
 LATEST = 7_258_118_400_000_000  # 2200-01-01
-MAX_TEXT = 100_000
+MAX_TEXT = 8_000
+"""Letters in one text: a row of such texts still fits a line of the log file."""
 DEVICE_GROUPS = (Group.DEVICE, Group.VITAL)
 
 
@@ -82,6 +84,8 @@ def _encodable(text: str) -> bool:
 
 
 def _check_value(known: Channel, new: NewEntry) -> None:
+    if new.words is not None and len(new.words) > MAX_WORDS:
+        raise refuse("entry.text_too_long", field="words", length=len(new.words), accepted=MAX_WORDS)
     if known.kind is Kind.NUMBER:
         if new.number is None:
             raise refuse("entry.no_number", channel=known.key, accepted="a number")
@@ -115,6 +119,8 @@ def _check_replaced(new: NewEntry, lookup: Lookup) -> None:
     if found.channel != new.channel:
         raise refuse("entry.replaces_other_channel", channel=new.channel, value=found.channel,
                      accepted=found.channel)  # fmt: skip
+    if found.action in (Action.MASK, Action.SHIFT) and new.action is not Action.WITHDRAW:
+        raise refuse("entry.span_only_withdrawn", value=str(new.action), accepted=str(Action.WITHDRAW))
     if new.action is not Action.MOVE and found.episode != new.episode:
         raise refuse("entry.replaces_other_episode", value=new.episode, accepted=found.episode)
 

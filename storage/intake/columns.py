@@ -6,6 +6,7 @@ import csv
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from storage.apostrophe import unguarded
 from storage.intake.findings import unreadable
 
 REQUIRED = ("episode", "at", "channel", "value", "unit", "by", "note")
@@ -27,6 +28,9 @@ class Columns:
         """One row by column name, with an empty text for columns the file has not."""
         found = dict.fromkeys((*REQUIRED, *OPTIONAL), "")
         found.update(zip(self.names, (c.strip() for c in cells), strict=True))
+        for name in ("episode", "by", "note", "reason"):
+            if found[name].startswith("'"):
+                found[name] = unguarded(found[name])
         return found
 
 

@@ -23,6 +23,10 @@ _IN_FILE = 1 << 40
 """Sequences that a file's rows would take: later than any of the store."""
 
 
+_UNKNOWN = 1 << 62
+"""The recording time of a row that states none: now, which is later than any."""
+
+
 def _key_of(e: NewEntry) -> _Key:
     return (e.episode, e.at, e.channel, e.number, e.words, e.by, e.action, e.replaces)
 
@@ -198,7 +202,7 @@ def _as_recorded(row: EntryRow, seq: int) -> Entry:
     return Entry(
         e.episode, e.channel, e.at, e.number, e.words, e.raw, e.raw_unit, e.decimals, e.zone, e.by, e.note,
         e.doubt, e.action, e.replaces, e.reason, e.source, seq, row.draft.id or f"row {seq}",
-        row.draft.source_recorded_at or 0,
+        row.draft.source_recorded_at or _UNKNOWN,
     )  # fmt: skip
 
 

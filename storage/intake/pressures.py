@@ -71,4 +71,11 @@ def _blamed(
     late = here or next((e for e in (*now, epap, ipap) if e.seq >= first_new), None)
     if late is None:
         return []  # the store had it before
-    return [Contradiction(at, late.seq, ipap.number or 0.0, epap.number or 0.0, here is not None)]
+    refused = here is not None and not _contradicted_later(here, ipap, epap)
+    return [Contradiction(at, late.seq, ipap.number or 0.0, epap.number or 0.0, refused)]
+
+
+def _contradicted_later(here: Entry, ipap: Entry, epap: Entry) -> bool:
+    """Whether the other pressure was recorded after this one: then that was the late entry, and not this."""
+    other = epap if here.channel == "ipap" else ipap
+    return other.at < here.at and other.recorded_at > here.recorded_at

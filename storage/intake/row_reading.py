@@ -10,12 +10,13 @@ from typing import TypeVar
 from uuid import NAMESPACE_URL, UUID, uuid5
 
 from core.record import instant
-from core.record.channels import LEAK_DEFINITIONS, Channel, channel
+from core.record.channels import LEAK_DEFINITIONS, Channel, Kind, channel
 from core.record.entries import Action, NewEntry, from_reading
 from core.record.instant import Instant
 from core.record.knowledge import REPLACING_ACTIONS
 from core.record.message import Message, RecordError, refuse
 from core.record.reading import read_value
+from storage.apostrophe import unguarded
 from storage.draft_batch import DraftEntry
 from storage.intake.device_rows import read_device_value
 from storage.intake.findings import CLOCK_LEAD, Findings
@@ -71,8 +72,12 @@ class RowReader:
         recorded = one.column("recorded_at", lambda: self._recorded(row["recorded_at"]))
         if known is None or action is None:
             return None
-        as_device = row["by"] == _BY_DEVICE and is_device_channel(known.key) and action is Action.ASSERT
-        if as_device and not row["replaces"] and not row["id"]:
+        if (
+            row["by"] == _BY_DEVICE
+            and is_device_channel(known.key)
+            and action not in (Action.MASK, Action.SHIFT)
+        ):
+            one.column("action", lambda: _plain_device_row(row, action))
             value = one.column("value", lambda: _device_value(known, row["value"], row["unit"]))
             if one.bad or at is None or episode is None or value is None:
                 return None
@@ -170,6 +175,12 @@ def _device_value(known: Channel, text: str, unit: str) -> tuple[float, int]:
     return value
 
 
+def _plain_device_row(row: dict[str, str], action: Action) -> None:
+    """Device samples have no ids: a span of them is corrected by mask or shift."""
+    if action is not Action.ASSERT or row["id"] or row["replaces"]:
+        raise refuse("row.device_entry", value=str(action), accepted="mask or shift")
+
+
 def _entry(
     known: Channel, action: Action, row: dict[str, str], episode: str, at: Instant
 ) -> tuple[NewEntry, tuple[Message, ...]]:
@@ -180,7 +191,8 @@ def _entry(
         return NewEntry(episode, known.key, at, raw=row["value"]), ()
     if action in (Action.MASK, Action.SHIFT):
         return NewEntry(episode, known.key, at, _span(action, row["value"], at), raw=row["value"]), ()
-    reading = read_value(known, row["value"], row["unit"])
+    text = row["value"] if known.kind in (Kind.NUMBER, Kind.INSTANT) else unguarded(row["value"])
+    reading = read_value(known, text, row["unit"])
     return from_reading(episode, at, reading), reading.doubts
 
 

@@ -12,7 +12,7 @@ from core.record.message import refuse
 from storage.intake.findings import unreadable
 
 BLOCK = 1 << 20
-MAX_LINE = 64 * 1024
+MAX_LINE = 128 * 1024
 _BOMS = ((b"\xff\xfe", "UTF-16"), (b"\xfe\xff", "UTF-16"))
 _UTF8_BOM = b"\xef\xbb\xbf"
 
@@ -30,7 +30,7 @@ class BlockReader:
     """Iterates over a file's blocks, hashing as it goes.
 
     Raises:
-        UnreadableFileError: a line over 64 KB, NUL bytes, or bytes that are not UTF-8.
+        UnreadableFileError: a line over 128 KB, NUL bytes, or bytes that are not UTF-8.
         RecordError: `intake.cancelled`.
     """
 

@@ -130,7 +130,7 @@ def test_every_fault_of_a_row_is_reported(read: Reader) -> None:
         (b"\x89PNG\r\n\x1a\n\x00\x00", 1, "file.binary"),
         ("\ufeff".encode("utf-16-le") + HEADER.encode("utf-16-le"), 1, "file.encoding"),
         (HEADER.encode() + b"\nE1,2026-03-28T01:00:00+00:00,label,Bett f\xfcnf,,AB,\n", 2, "file.encoding"),
-        (HEADER.encode() + b"\n" + b"x" * 70_000, 2, "line.too_long"),
+        (HEADER.encode() + b"\n" + b"x" * 140_000, 2, "line.too_long"),
         (HEADER.encode() + b'\nE1,2026-03-28T01:00:00+00:00,note,"never closed,,AB,\n', 2, "row.quotes"),
     ],
 )  # fmt: skip
