@@ -196,16 +196,31 @@ def settings_moves(
     states = _states(episode, settings, (support.start, *moments))
     moves: list[Move] = []
     for at, before, after in zip(moments, states[:-1], states[1:], strict=True):
-        steps, first = changed(at, before, after), _first_recorded(at, before, after)
-        kind, ended = "change", ends.get(at)
-        if ended is not None and _is_long(ended, rules):
-            kind, steps = BREAK_STEP, (Step(at, BREAK_STEP, ended.minutes(at), None), *steps)
-        if steps or first:
-            moves.append(Move(at, kind, steps, before, after, _not_a_step(first, steps)))
+        ended = ends.get(at)
+        move = _move(at, before, after, ended if ended is not None and _is_long(ended, rules) else None)
+        if move.steps or move.first:
+            moves.append(move)
     return tuple(moves)
 
 
+def _move(at: Instant, before: Settings, after: Settings, ended: Break | None) -> Move:
+    steps = changed(at, before, after)
+    first = _first_recorded(at, before, after) if _known(after) > _known(before) else ()
+    kind = "change"
+    if ended is not None:
+        kind, steps = BREAK_STEP, (Step(at, BREAK_STEP, ended.minutes(at), None), *steps)
+    return Move(at, kind, steps, before, after, _not_a_step(first, steps))
+
+
+def _known(s: Settings) -> int:
+    """How many settings are known; a first recording makes them more (oxygen counts once)."""
+    numbers = (s.ipap, s.epap, s.cpap, s.rate_set, s.ti)
+    return sum(v == v for v in numbers) + oxygen_recorded(s) + (s.mode is not None) + (s.interface is not None)
+
+
 def _not_a_step(first: tuple[Step, ...], steps: tuple[Step, ...]) -> tuple[Step, ...]:
+    if not first:
+        return ()
     named = {s.channel for s in steps}
     if "pressure_support" in named:
         named |= {"ipap", "epap", "cpap"}

@@ -45,10 +45,7 @@ class Oxygenation:
 
 def acute_hypercapnia(gas: GasFigure, policy: Policy) -> bool:
     """pH below 7.35 and PaCO2 above 45 mmHg (6.0 kPa)."""
-    if gas.ph is None or gas.paco2_mmHg is None:
-        return False
-    state = policy.state
-    return gas.ph < state.acidotic_below_ph.value and above(gas.paco2_mmHg, state.hypercapnia_mmHg)
+    return gas.ph is not None and gas.ph < policy.state.acidotic_below_ph.value and _hypercapnic(gas, policy)
 
 
 def hypoxaemia(gas: GasFigure, policy: Policy) -> bool:
@@ -58,46 +55,69 @@ def hypoxaemia(gas: GasFigure, policy: Policy) -> bool:
 
 def co2_arm(base: GasFigure, gas: GasFigure, policy: Policy) -> Arm:
     """The CO2 arm: pH up is +, PaCO2 down is +, each beyond noise; over-correction from a hypercapnic baseline."""
-    said: list[Message] = []
-    ph_sign = _ph_sign(base, gas, policy, said)
-    co2_sign = _paco2_sign(base, gas, policy, said)
-    if ph_sign is None and co2_sign is None:
-        return Arm(None, tuple(said))
-    if co2_sign == -1 and _over_corrected(base, gas, policy):
+    ph_sign, co2_sign = _ph_sign(base, gas, policy), _paco2_sign(base, gas, policy)
+    verdict = _co2_verdict(base, gas, policy, ph_sign, co2_sign)
+    said = [_ph_said(base, gas, policy, ph_sign), _paco2_said(base, gas, policy, co2_sign)]
+    if verdict == OVER_CORRECTION:
         said.insert(0, why.over_correction(gas, base))
-        return Arm(OVER_CORRECTION, tuple(said), co2_sign)
-    good = ph_sign == 1 or co2_sign == -1
-    bad = ph_sign == -1 or co2_sign == 1
-    verdict = MIXED if good and bad else BETTER if good else WORSE if bad else NO_CHANGE
     return Arm(verdict, tuple(said), co2_sign or 0)
 
 
-def _ph_sign(base: GasFigure, gas: GasFigure, policy: Policy, said: list[Message]) -> int | None:
+def co2_verdict(base: GasFigure, gas: GasFigure, policy: Policy) -> str | None:
+    """The CO2 arm's verdict without its reasons."""
+    return _co2_verdict(base, gas, policy, _ph_sign(base, gas, policy), _paco2_sign(base, gas, policy))
+
+
+def _co2_verdict(
+    base: GasFigure, gas: GasFigure, policy: Policy, ph_sign: int | None, co2_sign: int | None
+) -> str | None:
+    if ph_sign is None and co2_sign is None:
+        return None
+    if co2_sign == -1 and _over_corrected(base, gas, policy):
+        return OVER_CORRECTION
+    good = ph_sign == 1 or co2_sign == -1
+    bad = ph_sign == -1 or co2_sign == 1
+    return MIXED if good and bad else BETTER if good else WORSE if bad else NO_CHANGE
+
+
+def _ph_sign(base: GasFigure, gas: GasFigure, policy: Policy) -> int | None:
     if base.ph is None or gas.ph is None:
-        said.append(why.missing("ph", "baseline" if base.ph is None else "gas"))
         return None
-    noise = ph_noise(policy.noise)
-    sign = direction(gas.ph - base.ph, noise)
-    said.append(why.compared("ph", base.ph, gas.ph, noise, sign))
-    return sign
+    return direction(gas.ph - base.ph, ph_noise(policy.noise))
 
 
-def _paco2_sign(base: GasFigure, gas: GasFigure, policy: Policy, said: list[Message]) -> int | None:
+def _paco2_sign(base: GasFigure, gas: GasFigure, policy: Policy) -> int | None:
     if base.paco2_mmHg is None or gas.paco2_mmHg is None:
-        said.append(why.missing("paco2", "baseline" if base.paco2_mmHg is None else "gas"))
         return None
-    noise = paco2_noise(policy.noise, base.paco2_mmHg)
-    sign = direction(gas.paco2_mmHg - base.paco2_mmHg, noise)
-    said.append(why.compared("paco2", base.paco2_mmHg, gas.paco2_mmHg, noise, sign))
-    return sign
+    return direction(gas.paco2_mmHg - base.paco2_mmHg, paco2_noise(policy.noise, base.paco2_mmHg))
+
+
+def _ph_said(base: GasFigure, gas: GasFigure, policy: Policy, sign: int | None) -> Message:
+    if base.ph is None or gas.ph is None or sign is None:
+        return why.missing("ph", "baseline" if base.ph is None else "gas")
+    return why.compared("ph", base.ph, gas.ph, ph_noise(policy.noise), sign)
+
+
+def _paco2_said(base: GasFigure, gas: GasFigure, policy: Policy, sign: int | None) -> Message:
+    before, after = base.paco2_mmHg, gas.paco2_mmHg
+    if before is None or after is None or sign is None:
+        return why.missing("paco2", "baseline" if before is None else "gas")
+    return why.compared("paco2", before, after, paco2_noise(policy.noise, before), sign)
 
 
 def _over_corrected(base: GasFigure, gas: GasFigure, policy: Policy) -> bool:
     limit = policy.state.alkalotic_above_ph.value
-    if gas.ph is None or gas.ph <= limit or base.paco2_mmHg is None:
+    if gas.ph is None or gas.ph <= limit:
         return False
     carried = base.ph is None or base.ph <= limit
-    return carried and above(base.paco2_mmHg, policy.state.hypercapnia_mmHg)
+    return carried and _hypercapnic(base, policy)
+
+
+def _hypercapnic(gas: GasFigure, policy: Policy) -> bool:
+    """PaCO2 above 45 mmHg (6.0 kPa); taken from the gas's own figures where they say so."""
+    if gas.hypercapnic is not None or gas.paco2_mmHg is None:
+        return bool(gas.hypercapnic)
+    return above(gas.paco2_mmHg, policy.state.hypercapnia_mmHg)
 
 
 def pf_comparable(base: GasFigure, gas: GasFigure, policy: Policy) -> Message | None:

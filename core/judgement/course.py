@@ -19,7 +19,7 @@ from typing import Final
 
 import numpy as np
 
-from core.judgement.anchors import Anchor, settings_moves
+from core.judgement.anchors import Anchor
 from core.judgement.context import Context
 from core.judgement.policy import Policy
 from core.judgement.response_baseline import minute
@@ -41,16 +41,35 @@ BAND_Z: Final = 1.6449
 TWO_GASES: Final = 2.772
 """1.96 x sqrt 2: the noise of a difference is this many standard deviations of one gas."""
 MINUTES: Final = (30, 60, 90, 120)
+_CUTTING: Final = ("ipap", "epap", "cpap", "fio2", "o2_flow", "rate_set", "ti")
 
 
 def course_cuts(ctx: Context) -> tuple[Instant, ...]:
-    """The moments that no course may cross: settings that took effect, edges of breaks, start and end of support."""
+    """The moments that no course may cross: every change of a setting, edges of breaks, start and end of support.
+
+    A value written down for the first time cuts too, and so does a change that was undone: something was not as
+    before. A setting logged again with the value it had does not.
+    """
     support = ctx.support
-    cuts = {m.at for m in settings_moves(ctx.episode, ctx.settings, support, ctx.policy.response)}
+    cuts = {t for t in _setting_cuts(ctx) if support.start is None or t > support.start}
     for b in support.breaks:
         cuts |= {b.start} | ({b.end} if b.end is not None else set())
     cuts |= {t for t in (support.start, support.end) if t is not None}
     return tuple(sorted(cuts))
+
+
+def _setting_cuts(ctx: Context) -> list[Instant]:
+    found: list[Instant] = []
+    for channel in _CUTTING:
+        steps = ctx.settings.steps(channel)
+        v = steps.v
+        if v.size:
+            same = (v[1:] == v[:-1]) | (np.isnan(v[1:]) & np.isnan(v[:-1]))
+            found += [int(steps.t[0]), *steps.t[1:][~same].tolist()]
+    for channel in ("mode", "interface"):
+        words = ctx.episode.text(channel)
+        found += [t for t, now, was in zip(words.t.tolist(), words.v, (None, *words.v), strict=False) if now != was]
+    return found
 
 
 def course_gases(ctx: Context) -> tuple[GasFigure, ...]:
@@ -80,21 +99,32 @@ def at_minutes(
     low = bisect_right(gases, minute(anchor.at), key=lambda g: minute(g.at))
     high = len(gases) if until is None else bisect_right(gases, minute(until), key=lambda g: minute(g.at))
     own = gases[low:high]
-    return {str(m): _value(ctx, anchor.at + m * MINUTE, own, until) for m in MINUTES}
+    known = (
+        [(g.at, g.ph) for g in own if g.ph is not None],
+        [(g.at, g.paco2_mmHg) for g in own if g.paco2_mmHg is not None],
+    )
+    return {key: _value(ctx, anchor.at + m * MINUTE, own, known, until) for m, key in _KEYS}
 
 
-def _value(ctx: Context, at: Instant, own: tuple[GasFigure, ...], until: Instant | None) -> CourseValue:
+_Known = list[tuple[Instant, float]]
+
+
+def _value(
+    ctx: Context, at: Instant, own: tuple[GasFigure, ...], known: tuple[_Known, _Known], until: Instant | None
+) -> CourseValue:
     if at > ctx.as_of:
         return CourseValue(basis=Message("course.not_yet", {"at": at}))
     if until is not None and minute(at) > minute(until):
         return CourseValue(basis=Message("course.changed", {"changed_at": until}))
     if not own:
-        return CourseValue(basis=Message("course.no_gas"))
-    phs = [(g.at, g.ph) for g in own if g.ph is not None]
-    paco2s = [(g.at, g.paco2_mmHg) for g in own if g.paco2_mmHg is not None]
-    ph = _one(at, phs, _PH, ctx.policy)
-    co2 = _one(at, paco2s, _PACO2, ctx.policy)
+        return _NO_GAS
+    phs, paco2s = known
+    ph, co2 = _one(at, phs, _PH, ctx.policy), _one(at, paco2s, _PACO2, ctx.policy)
     return CourseValue(*ph, *co2, basis=_basis(at, own))
+
+
+_NO_GAS = CourseValue(basis=Message("course.no_gas"))
+_KEYS = tuple((m, str(m)) for m in MINUTES)
 
 
 def _basis(at: Instant, own: tuple[GasFigure, ...]) -> Message:
@@ -135,7 +165,7 @@ _PH = _Quantity(_ph_variance, PH_PROCESS_VARIANCE_PER_H, PH_DRIFT_VARIANCE_PER_H
 _PACO2 = _Quantity(_co2_variance, PACO2_PROCESS_VARIANCE_PER_H, PACO2_DRIFT_VARIANCE_PER_H)
 
 
-def _one(at: Instant, known: list[tuple[Instant, float]], how: _Quantity, policy: Policy) -> _Triple:
+def _one(at: Instant, known: _Known, how: _Quantity, policy: Policy) -> _Triple:
     """Value, low and high of one quantity; no value beyond the last gas, nothing before the first."""
     i = bisect_right(known, at, key=lambda row: row[0])
     if i == 0:

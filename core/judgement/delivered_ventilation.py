@@ -10,7 +10,7 @@ import numpy as np
 from core.judgement.context import Context
 from core.judgement.device_medians import medians
 from core.judgement.leak_trend import leak_definition, limits_at
-from core.judgement.probable_breaks import in_any, probable_breaks
+from core.judgement.probable_breaks import in_any
 from core.physiology.ventilation import base_weight, predicted_body_weight
 from core.record.episode import Series
 from core.record.instant import MINUTE, Instant
@@ -50,13 +50,14 @@ class Ventilation:
         return tuple(said)
 
 
-def delivered(ctx: Context, start: Instant, end: Instant) -> Ventilation | None:
+def delivered(
+    ctx: Context, start: Instant, end: Instant, off: tuple[Break, ...]
+) -> Ventilation | None:
     """The alveolar ventilation delivered from `start` to `end`; None where the device gave no volumes.
 
-    Minute volume where the device gives it, else rate x tidal volume; less dead space x rate. Breaks, logged or
-    probable, are left out.
+    Minute volume where the device gives it, else rate x tidal volume; less dead space x rate. `off` are the breaks,
+    logged or probable: they are left out.
     """
-    off = (*ctx.support.breaks, *probable_breaks(ctx))
     parts = {c: _worn(ctx, c, start, end, off) for c in ("mv", "vte", "rr_total")}
     bins = {c: medians(s.t, s.v, BIN) for c, s in parts.items()}
     source, first, second = ("mv", "mv", "rr_total") if len(parts["mv"]) else ("rr x vte", "vte", "rr_total")

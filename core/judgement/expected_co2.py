@@ -16,6 +16,7 @@ from core.judgement.anchors import Anchor
 from core.judgement.context import Context
 from core.judgement.course import course_cuts, course_gases
 from core.judgement.delivered_ventilation import Ventilation, delivered
+from core.judgement.probable_breaks import probable_breaks
 from core.judgement.response_baseline import minute
 from core.judgement.setting_change import CO2
 from core.judgement.shapes import ExpectedCO2, GasFigure
@@ -25,7 +26,6 @@ from core.physiology.co2_course import (
     RISE_HALF_TIME,
     RISE_HALF_TIMES,
     STEADY_TOLERANCE,
-    paco2_after,
 )
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
@@ -46,12 +46,14 @@ def expected(ctx: Context, anchor: Anchor, until: Instant | None = None) -> Expe
     Empty with reasons where a gas on support before it, or ventilation on either side, is not known, or where
     something changed between that gas and the anchor.
     """
-    base, reason = _baseline(ctx, anchor)
+    cuts = course_cuts(ctx)
+    base, reason = _baseline(ctx, anchor, cuts)
     if base is None or base.paco2_mmHg is None:
         return ExpectedCO2(reasons={"expected_mmHg": reason or Message("expected.no_baseline")})
-    end = _end(ctx, anchor, until)
-    before = delivered(ctx, base.at - BEFORE, anchor.first_at - 1)
-    after = delivered(ctx, anchor.first_at + 1, end)
+    end = _end(ctx, anchor, cuts, until)
+    off = (*ctx.support.breaks, *probable_breaks(ctx))
+    before = delivered(ctx, base.at - BEFORE, anchor.first_at - 1, off)
+    after = delivered(ctx, anchor.first_at + 1, end, off)
     if before is None or after is None:
         side = "before" if before is None else "after"
         return ExpectedCO2(reasons={"expected_mmHg": Message("expected.ventilation_not_known", {"side": side})})
@@ -74,7 +76,7 @@ def expected(ctx: Context, anchor: Anchor, until: Instant | None = None) -> Expe
     return figure if gas is None else _against(figure, gas, t, middle, low, high)
 
 
-def _baseline(ctx: Context, anchor: Anchor) -> tuple[GasFigure | None, Message | None]:
+def _baseline(ctx: Context, anchor: Anchor, cuts: tuple[Instant, ...]) -> tuple[GasFigure | None, Message | None]:
     if CO2 not in anchor.effects:
         return None, Message("expected.acts_not_on_co2")
     if anchor.kind != "change":
@@ -85,15 +87,15 @@ def _baseline(ctx: Context, anchor: Anchor) -> tuple[GasFigure | None, Message |
         return None, Message("expected.no_baseline")
     if anchor.first_at - gases[-1].at > ctx.policy.response.baseline_age_change_h.value * HOUR:
         return None, Message("expected.baseline_too_old", {"gas_at": gases[-1].at})
-    crossed = [c for c in course_cuts(ctx) if minute(gases[-1].at) <= minute(c) < minute(anchor.first_at)]
+    crossed = [c for c in cuts if minute(gases[-1].at) <= minute(c) < minute(anchor.first_at)]
     if crossed:
         return None, Message("expected.changed_before", {"changed_at": crossed[-1]})
     return gases[-1], None
 
 
-def _end(ctx: Context, anchor: Anchor, until: Instant | None) -> Instant:
-    cuts = [c for c in course_cuts(ctx) if c > anchor.at]
-    stops = [ctx.as_of, anchor.at + LONGEST, *cuts[:1], *([until] if until is not None else [])]
+def _end(ctx: Context, anchor: Anchor, cuts: tuple[Instant, ...], until: Instant | None) -> Instant:
+    later = [c for c in cuts if c > anchor.at]
+    stops = [ctx.as_of, anchor.at + LONGEST, *later[:1], *([until] if until is not None else [])]
     return min(stops)
 
 
@@ -129,7 +131,8 @@ class _Run:
         rows = [p]
         for end, dt in zip(steady, minutes, strict=True):
             goal = end * factor
-            p = np.asarray(paco2_after(p, goal, float(dt), np.where(goal < p, fall, rise)))
+            # co2_course.paco2_after, without its checks: every input here is known and positive
+            p = goal + (p - goal) * 2.0 ** (-dt / np.where(goal < p, fall, rise))
             rows.append(p)
         all_courses = np.stack(rows)
         return all_courses[:, 0], all_courses.min(axis=1), all_courses.max(axis=1)

@@ -28,7 +28,7 @@ from core.judgement.response_baseline import (
     venous_baseline,
 )
 from core.judgement.response_headline import Headline, headline
-from core.judgement.response_since import StartBaseline, difference, since_start
+from core.judgement.response_since import Earlier, StartBaseline, difference, since_start
 from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure, SinceStart, Step
 from core.judgement.vitals_near import Found, VitalsNear
 from core.record.instant import MINUTE, Instant
@@ -75,13 +75,13 @@ class _Judge:
         first = self.anchors[0]
         start = self._start_baseline(first)
         found: dict[Instant, SinceStart] = {}
-        earlier: list[GasFigure] = []
+        earlier = Earlier()
         for gas in self.arterial:
             if gas.off_support or (minute(gas.at) <= minute(first.first_at) and not first.running_before):
                 continue
-            seen = self._seen(first.first_at, start.gas, gas, first.first_at, gas.at + 30 * MINUTE)
+            seen = self._seen(first.first_at, start.gas, gas)
             found[gas.at] = since_start(start, gas, earlier, seen, self.ctx.policy)
-            earlier.append(gas)
+            earlier.add(gas)
         return found
 
     def _start_baseline(self, first: Anchor) -> StartBaseline:
@@ -142,7 +142,7 @@ class _Judge:
         for gas in self.ctx.gases[bisect_right(self._gas_minutes, first) :]:
             m = minute(gas.at)
             if until is None or m <= minute(until):
-                out.append(self._judged(index, base, gas, until))
+                out.append(self._judged(index, base, gas))
             elif m <= limit:
                 out.append(self._not_attributable(index, base, gas))
             else:
@@ -153,34 +153,29 @@ class _Judge:
     def _gas_minutes(self) -> list[int]:
         return [minute(g.at) for g in self.ctx.gases]
 
-    def _judged(self, index: int, base: Baseline, gas: GasFigure, until: Instant | None) -> JudgedGas:
+    def _judged(self, index: int, base: Baseline, gas: GasFigure) -> JudgedGas:
         anchor = self.anchors[index]
         minutes, when = timing(self.ctx, anchor, gas)
-        plain = JudgedGas(gas.at, minutes, when, state=gas.state,
-                          since_start=self.since.get(gas.at, _NOT_COMPARED))  # fmt: skip
+        since = self.since.get(gas.at, _NOT_COMPARED)
+        plain = JudgedGas(gas.at, minutes, when, state=gas.state, since_start=since)
         if gas.site == VENOUS:
             return self._venous(anchor, gas, plain)
         reason = _unjudged(base, gas)
-        if reason:
+        if reason or base.gas is None:
             return replace(plain, why=(*reason, *why.doubts(base.gas, gas)))
-        assert base.gas is not None
-        high = min(gas.at + 30 * MINUTE, until if until is not None else self.ctx.as_of)
-        seen = self._seen(anchor.first_at, base.gas, gas, anchor.at if gas.at > anchor.at else anchor.first_at, high)
+        seen = self._seen(anchor.first_at, base.gas, gas)
         co2 = arms.co2_arm(base.gas, gas, self.ctx.policy)
         oxygen = arms.oxygen_arm(base.gas, gas, seen, self.ctx.policy, co2, by_spo2=anchor.oxygen_only)
         active = arms.acute_hypercapnia(base.gas, self.ctx.policy) or (anchor.oxygen_only and self.at_risk)
-        cautions = [why.about_gas("early", gas)] if when == "early" else []
-        lost = plain.since_start.reasons.get("gain_lost")
-        cautions += [lost] if lost is not None else []
-        cautions += [why.about_gas("capillary", gas)] if gas.site == "capillary" else []
         also = self._also_changed(index, base.gas.at, gas.at)
-        cautions += [Message("response.also_changed", {"steps": len(also), "last_at": also[-1].at})] if also else []
-        return replace(
-            _with_deltas(plain, self.ctx.policy, base.gas, gas),
-            co2_arm=co2.verdict, oxygen_arm=oxygen.verdict,
-            verdict=arms.verdict(co2, oxygen, active, anchor.oxygen_only), also_changed=also,
-            why=(*co2.why, *oxygen.why, *([base.why] if base.early and base.why else []), *cautions,
-                 *why.doubts(base.gas, gas)),
+        apart = arms.pf_comparable(base.gas, gas, self.ctx.policy)
+        return JudgedGas(
+            gas.at, minutes, when, difference(base.gas.ph, gas.ph),
+            difference(base.gas.paco2_mmHg, gas.paco2_mmHg),
+            None if apart else difference(base.gas.pf_mmHg, gas.pf_mmHg),
+            arms.verdict(co2, oxygen, active, anchor.oxygen_only), co2.verdict, oxygen.verdict, gas.state, True,
+            since, also, (*co2.why, *oxygen.why, *_cautions(base, gas, when, since, also),
+                          *why.doubts(base.gas, gas)),
         )  # fmt: skip
 
     def _not_attributable(self, index: int, base: Baseline, gas: GasFigure) -> JudgedGas:
@@ -215,24 +210,41 @@ class _Judge:
         high = bisect_left(steps, minute(before), key=lambda row: row[0])
         return tuple(step for _, i, step in steps[low:high] if i != index)
 
-    def _seen(
-        self, first_at: Instant, base: GasFigure | None, gas: GasFigure, low: Instant, high: Instant
-    ) -> Oxygenation:
-        high = min(high, self.ctx.as_of)
-        rate = self.vitals.rate
-        before_at = first_at if base is None else max(first_at, base.at)
-        rr_before = rate(base.at, 0, before_at) if base is not None else None
-        spo2_before = self.vitals.spo2(before_at, 0, before_at)
-        if spo2_before is None and base is not None:
-            spo2_before = self.vitals.spo2(base.at, 0, before_at)
+    def _seen(self, first_at: Instant, base: GasFigure | None, gas: GasFigure) -> Oxygenation:
+        spo2_before, rr_before, given_before = self._before(first_at, base)
+        spo2_after, rr_after, given_after = self._after[gas.at]
         return Oxygenation(
-            spo2_before=spo2_before,
-            spo2_after=self.vitals.spo2(gas.at, low, high),
-            rr_before=rr_before or rate(first_at, 0, first_at),
-            rr_after=rate(gas.at, low, high),
-            low=self.target.low, high=self.target.high,
-            given_before=self._oxygen_given(first_at - 1), given_after=self._oxygen_given(gas.at),
-        )  # fmt: skip
+            spo2_before, spo2_after, rr_before, rr_after, self.target.low, self.target.high, given_before, given_after
+        )
+
+    def _before(
+        self, first_at: Instant, base: GasFigure | None
+    ) -> tuple[Found | None, Found | None, bool]:
+        """SpO2, rate and whether oxygen was given before an anchor: near the anchor, else near its baseline."""
+        vitals = self.vitals
+        before_at = first_at if base is None else max(first_at, base.at)
+        rate = vitals.rate(base.at, 0, before_at) if base is not None else None
+        spo2 = vitals.spo2(before_at, 0, before_at)
+        if spo2 is None and base is not None:
+            spo2 = vitals.spo2(base.at, 0, before_at)
+        return spo2, rate or vitals.rate(first_at, 0, first_at), self._oxygen_given(first_at - 1)
+
+    @cached_property
+    def _after(self) -> dict[Instant, tuple[Found | None, Found | None, bool]]:
+        """SpO2, rate and whether oxygen was given at each gas, with no other anchor between."""
+        acting = [(a, until) for a, until in zip(self.anchors, self._untils, strict=True) if a.judges]
+        starts = [minute(a.first_at) for a, _ in acting]
+        out: dict[Instant, tuple[Found | None, Found | None, bool]] = {}
+        for gas in self.arterial:
+            i = bisect_left(starts, minute(gas.at)) - 1
+            low, high = 0, min(gas.at + 30 * MINUTE, self.ctx.as_of)
+            if i >= 0:
+                anchor, until = acting[i]
+                low = anchor.at if gas.at > anchor.at else anchor.first_at
+                high = high if until is None else min(high, until)
+            spo2, rate = (look(gas.at, low, high) for look in (self.vitals.spo2, self.vitals.rate))
+            out[gas.at] = spo2, rate, self._oxygen_given(gas.at)
+        return out
 
     @cached_property
     def _oxygen(self) -> tuple[list[int], list[bool]]:
@@ -295,6 +307,22 @@ def _unjudged(base: Baseline, gas: GasFigure) -> tuple[Message, ...]:
         key = "serves_as_baseline" if gas is base.gas else "before_baseline"
         return (why.about_gas(key, gas),)
     return ()
+
+
+def _cautions(
+    base: Baseline, gas: GasFigure, when: str, since: SinceStart, also: tuple[Step, ...]
+) -> list[Message]:
+    """What has to be said beside a verdict."""
+    said = [base.why] if base.early and base.why else []
+    if when == "early":
+        said.append(why.about_gas("early", gas))
+    if "gain_lost" in since.reasons:
+        said.append(since.reasons["gain_lost"])
+    if gas.site == "capillary":
+        said.append(why.about_gas("capillary", gas))
+    if also:
+        said.append(Message("response.also_changed", {"steps": len(also), "last_at": also[-1].at}))
+    return said
 
 
 def _with_deltas(judged: JudgedGas, policy: Policy, base: GasFigure, gas: GasFigure) -> JudgedGas:

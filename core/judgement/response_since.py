@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from core.judgement import arms
 from core.judgement.arms import Oxygenation
@@ -22,8 +22,31 @@ class StartBaseline:
     reference: bool = False
 
 
+@dataclass(slots=True)
+class Earlier:
+    """The gases on support between the start and now: those of the highest pH, and those with a P/F."""
+
+    by_ph: list[GasFigure] = field(default_factory=list)
+    with_pf: list[GasFigure] = field(default_factory=list)
+
+    def add(self, gas: GasFigure) -> None:
+        """One more gas. Only the two best by pH are kept: one of them may be the baseline itself."""
+        if gas.ph is not None:
+            self.by_ph = sorted((*self.by_ph, gas), key=_by_ph, reverse=True)[:2]
+        if gas.pf_mmHg is not None:
+            self.with_pf.append(gas)
+
+    def best(self, base: GasFigure | None) -> GasFigure | None:
+        """The gas of the highest pH, of equal ones that of the lowest PaCO2, the baseline left out."""
+        return next((g for g in self.by_ph if g is not base), None)
+
+
+def _by_ph(gas: GasFigure) -> tuple[float, float]:
+    return gas.ph or 0.0, -(gas.paco2_mmHg or 0.0)
+
+
 def since_start(
-    start: StartBaseline, gas: GasFigure, earlier: list[GasFigure], seen: Oxygenation, policy: Policy
+    start: StartBaseline, gas: GasFigure, earlier: Earlier, seen: Oxygenation, policy: Policy
 ) -> SinceStart:
     """One gas against the start. `earlier` are the gases on support between the start and this gas."""
     reasons: dict[str, Message] = {}
@@ -57,20 +80,19 @@ def difference(before: float | None, after: float | None) -> float | None:
 
 
 def gain_lost(
-    base: GasFigure | None, gas: GasFigure, earlier: list[GasFigure], policy: Policy
+    base: GasFigure | None, gas: GasFigure, earlier: Earlier, policy: Policy
 ) -> Message | None:
     """A relapse from the best gas since the start, beyond noise; None where there is none.
 
     The best gas is the one of the highest pH. It must be better than the start's baseline, where there is one:
     what was never gained is not lost. The same for P/F.
     """
-    with_ph = [g for g in earlier if g.ph is not None and g is not base]
-    if with_ph and gas.ph is not None:
-        best = max(with_ph, key=lambda g: (g.ph or 0.0, -(g.paco2_mmHg or 0.0)))
+    best = earlier.best(base)
+    if best is not None and gas.ph is not None:
         gained = base is None or base.ph is None or (best.ph or 0.0) > base.ph
-        if gained and arms.co2_arm(best, gas, policy).verdict == arms.WORSE:
+        if gained and arms.co2_verdict(best, gas, policy) == arms.WORSE:
             return _lost("ph", best.at, best.ph, gas.ph)
-    return _pf_lost(base, gas, [g for g in earlier if g is not base], policy)
+    return _pf_lost(base, gas, [g for g in earlier.with_pf if g is not base], policy)
 
 
 def _pf_lost(

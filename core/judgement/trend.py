@@ -179,17 +179,18 @@ def _rate_time(ctx: Context, at: Instant) -> Instant:
 
 
 def rates_at(ctx: Context, times: Times) -> Values:
-    """The respiratory rate at each time, shape (n,): counted within 30 min, else the device's median, else NaN."""
+    """The respiratory rate at each of `times` (in order), shape (n,): counted within 30 min, else the device's median, else NaN."""
     counted = _finite(ctx.episode.number("rr").spots)
     out = np.full(times.shape, np.nan)
     if len(counted) and times.size:
         out = _nearest_within(counted, times, int(ctx.policy.freshness.vitals_min.value * MINUTE))
     machine = _machine_rate(ctx)
     if len(machine) and times.size:
-        bins = _bins(ctx, machine)
         span = int(ctx.policy.trend.device_median_min.value * MINUTE)
-        i = np.minimum(np.searchsorted(bins.bin, times // span), bins.bin.size - 1)
-        out = np.where(np.isnan(out) & (bins.bin[i] == times // span), bins.v[i], out)
+        bins = _bins(ctx, machine.between(int(times[0]) // span * span, int(times[-1]) + span))
+        if bins.bin.size:
+            i = np.minimum(np.searchsorted(bins.bin, times // span), bins.bin.size - 1)
+            out = np.where(np.isnan(out) & (bins.bin[i] == times // span), bins.v[i], out)
     return out
 
 

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import numpy as np
 import pytest
 
 from core.judgement.anchors import find_anchors
 from core.judgement.expected_co2 import EXPLAIN_HIGHER, expected
 from core.judgement.shapes import ExpectedCO2
+from core.physiology.co2_course import FALL_HALF_TIME, paco2_after
+from core.record.instant import MINUTE
 from tests.support.log_cases import at, context
 
 
@@ -50,6 +53,14 @@ def test_a_fall_is_fast_and_a_rise_slow() -> None:
 
     assert done_at_30(12.0) == pytest.approx(1 - 2 ** (-30 / 3.5), abs=1e-3)
     assert done_at_30(7.5) == pytest.approx(1 - 2 ** (-30 / 16), abs=0.01)
+
+
+def test_it_follows_the_closed_form() -> None:
+    course = found(record(12.0))
+    goal = 80 * (9 - DEAD) / (12 - DEAD)
+    minutes = (np.array(course.t) - at("03:30")) / MINUTE
+    wanted = paco2_after(80.0, goal, minutes, FALL_HALF_TIME)
+    assert np.array(course.expected_mmHg) == pytest.approx(wanted)
 
 
 def test_unchanged_ventilation_expects_no_change() -> None:
