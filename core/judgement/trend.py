@@ -179,7 +179,10 @@ def _rate_time(ctx: Context, at: Instant) -> Instant:
 
 
 def rates_at(ctx: Context, times: Times) -> Values:
-    """The respiratory rate at each of `times` (in order), shape (n,): counted within 30 min, else the device's median, else NaN."""
+    """The respiratory rate at each of `times` (in order), shape (n,), NaN where there is none.
+
+    Counted within 30 min, else the device's median.
+    """
     counted = _finite(ctx.episode.number("rr").spots)
     out = np.full(times.shape, np.nan)
     if len(counted) and times.size:
