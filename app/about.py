@@ -22,7 +22,9 @@ class AboutDialog(QDialog):
         title = QLabel(f"Luffmark {_version()}")
         title.setProperty("role", "title")
         column.addWidget(title)
-        built = self.tr("Free software under the Mozilla Public License 2.0. Built on Qt {qt}.").format(qt=qVersion())
+        built = self.tr("Free software under the Mozilla Public License 2.0. Built on Qt {qt}.").format(
+            qt=qVersion()
+        )
         for text in (intended_use(), *cautions(), built):
             label = QLabel(text)
             label.setWordWrap(True)

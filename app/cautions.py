@@ -10,12 +10,21 @@ translate = QCoreApplication.translate
 def cautions() -> tuple[str, ...]:
     """The cautions, one sentence or two each."""
     return (
-        translate("cautions", "This tool supports clinical judgement and never replaces it. A qualified person decides."),
-        translate("cautions", "It is no alarm and no monitor. It knows only what was logged, and nothing before it was logged."),
-        translate("cautions", "Local policy and licensed practice come first. Thresholds marked 'from memory' or "
-                  "'common practice' are to be confirmed locally before anyone relies on them."),
+        translate(
+            "cautions",
+            "This tool supports clinical judgement and never replaces it. A qualified person decides.",
+        ),
+        translate(
+            "cautions",
+            "It is no alarm and no monitor. It knows only what was logged, and nothing before it was logged.",
+        ),
+        translate(
+            "cautions",
+            "Local policy and licensed practice come first. Thresholds marked 'from memory' or "
+            "'common practice' are to be confirmed locally before anyone relies on them.",
+        ),
         translate("cautions", "A ward settles its regulatory position before it relies on flags."),
-    )  # fmt: skip
+    )
 
 
 def intended_use() -> str:
@@ -23,5 +32,6 @@ def intended_use() -> str:
     return translate(
         "cautions",
         "Luffmark keeps a shift's log of mask ventilation (BPAP, CPAP) for acute respiratory failure, computes "
-        "whether each patient is responding, flags those that meet published escalation markers, and writes the handover.",
+        "whether each patient is responding, flags those that meet published escalation markers, and writes "
+        "the handover.",
     )

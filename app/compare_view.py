@@ -6,7 +6,16 @@ from collections.abc import Mapping
 
 from PySide6.QtCore import QSize, Qt, Signal
 from PySide6.QtGui import QIcon, QKeyEvent, QPainter, QPixmap
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QListWidget, QListWidgetItem, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QListWidget,
+    QListWidgetItem,
+    QScrollArea,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.compare.course_chart import CourseChart, pen_of
 from app.compare.courses import LEAST, MOST, compare, episode_name
@@ -109,7 +118,9 @@ class CompareView(QWidget):
         made = compare([self._ward[k] for k in keys], self._answers, self._gas_unit)
         self.chart.show_comparison(made)
         self._number(keys)
-        said = [self.tr("Space ticks, Enter opens. {least} to {most} episodes.").format(least=LEAST, most=MOST)]
+        said = [
+            self.tr("Space ticks, Enter opens. {least} to {most} episodes.").format(least=LEAST, most=MOST)
+        ]
         if made.left_out:
             said.append(self.tr("Start not recorded: {labels}.").format(labels=", ".join(made.left_out)))
         self.said.setText(" ".join(said))

@@ -21,7 +21,9 @@ class EpisodeFeed(QObject):
     refreshed = Signal(object)
     """`EpisodeOnScreen`."""
 
-    def __init__(self, model: SessionModel, ward: WardFeed, gas_unit: str, parent: QObject | None = None) -> None:
+    def __init__(
+        self, model: SessionModel, ward: WardFeed, gas_unit: str, parent: QObject | None = None
+    ) -> None:
         super().__init__(parent)
         self._model, self._ward, self._gas_unit = model, ward, gas_unit
         self._kept: dict[str, PanelSet] = {}
@@ -49,9 +51,16 @@ class EpisodeFeed(QObject):
         on_ward = self._ward.on_ward(key) if key is not None else None
         if key is not None and on_ward is not None:
             record = self._ward.answers[key].record
-            self.refreshed.emit(EpisodeOnScreen(
-                record, on_ward.figures, on_ward.course, self._model.session.policy, self.panels(), self._gas_unit,
-            ))  # fmt: skip
+            self.refreshed.emit(
+                EpisodeOnScreen(
+                    record,
+                    on_ward.figures,
+                    on_ward.course,
+                    self._model.session.policy,
+                    self.panels(),
+                    self._gas_unit,
+                )
+            )
 
     def _model_changed(self, changed: Changed) -> None:
         if changed.touches(What.STORE, What.LAYOUT):

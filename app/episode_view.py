@@ -139,7 +139,11 @@ class EpisodeView(QWidget):
         if place:
             parts.append(str(place))
         ceiling = facts.get("ceiling_of_care")
-        parts.append(translate("episode", "ceiling: {ceiling}").format(ceiling=ceiling or translate("episode", "not recorded")))
+        parts.append(
+            translate("episode", "ceiling: {ceiling}").format(
+                ceiling=ceiling or translate("episode", "not recorded")
+            )
+        )
         return ", ".join(parts)
 
     # the crosshair
@@ -151,8 +155,13 @@ class EpisodeView(QWidget):
         if self._on is None:
             return
         at = self._on.course.until if instant is None else instant
-        self.readout.show_moment(at, self._on.zone, self.stack.settings_at(min(at, self._on.course.until - 1)),
-                                 self.stack.readings_at(at), pointed=instant is not None)  # fmt: skip
+        self.readout.show_moment(
+            at,
+            self._on.zone,
+            self.stack.settings_at(min(at, self._on.course.until - 1)),
+            self.stack.readings_at(at),
+            pointed=instant is not None,
+        )
 
     def go_to_anchor(self, step: int) -> None:
         """Put the crosshair on the next (1) or previous (-1) anchor."""

@@ -77,31 +77,54 @@ class Explainer:
         rules = []
         if rule is not None and rule.limits:
             told = ", ".join(f"{name.replace('_', ' ')} {value:g}" for name, value in rule.limits.items())
-            rules.append(translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told))
+            rules.append(
+                translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told)
+            )
         if rule is not None:
-            rules.append(translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " ")))
-        notes = [translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
-                 translate("explain", "Met since {time}.").format(time=wall(flag.since, zone))]  # fmt: skip
+            rules.append(
+                translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " "))
+            )
+        notes = [
+            translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
+            translate("explain", "Met since {time}.").format(time=wall(flag.since, zone)),
+        ]
         if flag.outside_population:
             notes.append(translate("explain", "This patient is outside the population it was validated in."))
         if flag.seen_by and flag.seen_at is not None:
-            notes.append(translate("explain", "Seen by {who}, {time}.").format(
-                who=flag.seen_by, time=wall(flag.seen_at, zone)))  # fmt: skip
+            notes.append(
+                translate("explain", "Seen by {who}, {time}.").format(
+                    who=flag.seen_by, time=wall(flag.seen_at, zone)
+                )
+            )
         if flag.settled_by and flag.settled_at is not None:
-            notes.append(translate("explain", "Settled by {who}, {time}: {why}").format(
-                who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or ""))  # fmt: skip
+            notes.append(
+                translate("explain", "Settled by {who}, {time}: {why}").format(
+                    who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or ""
+                )
+            )
         evidence = tuple(sentence(e, self.reader) for e in flag.evidence)
         notes.append(translate("explain", "Policy {hash}.").format(hash=flag.policy[:16]))
-        return Explanation(marker_name(flag.marker, self.reader), (*evidence, *rules), (), tuple(notes),
-                           flag.source, flag.sure)  # fmt: skip
+        return Explanation(
+            marker_name(flag.marker, self.reader),
+            (*evidence, *rules),
+            (),
+            tuple(notes),
+            flag.source,
+            flag.sure,
+        )
 
     def response(self, response: ResponseFigure) -> Explanation:
         """A verdict: the baseline, the gas, what was compared against which noise."""
         zone, noise = self.reader.zone, self.policy.noise
         inputs = []
         if response.baseline_at is not None:
-            inputs.append((translate("explain", "Baseline gas"), self._values(
-                response.baseline_ph, response.baseline_paco2_mmHg), clock(response.baseline_at, zone)))  # fmt: skip
+            inputs.append(
+                (
+                    translate("explain", "Baseline gas"),
+                    self._values(response.baseline_ph, response.baseline_paco2_mmHg),
+                    clock(response.baseline_at, zone),
+                )
+            )
         for g in response.gases:
             told = [f"{minutes(g.minutes)}"]
             if g.delta_ph is not None:
@@ -111,51 +134,82 @@ class Explainer:
             if g.verdict is not None:
                 told.append(verdict_word(verdict_of(g.verdict)))
             inputs.append((translate("explain", "Gas judged"), ", ".join(told), clock(g.at, zone)))
-        why = [sentence(m, self.reader) for g in response.gases for m in g.why] \
-            + [sentence(m, self.reader) for m in response.why]
+        why = [sentence(m, self.reader) for g in response.gases for m in g.why] + [
+            sentence(m, self.reader) for m in response.why
+        ]
         rules = (
-            translate("explain", "A gas 30 to 120 minutes after the change judges it against the last gas before it."),
-            translate("explain", "Beyond noise is: {limits}.").format(limits="; ".join((
-                self._limit("pH", noise.ph, fixed(noise.ph.value, 3)),
-                self._limit("PaCO2", noise.paco2_mmHg, gas_pressure(noise.paco2_mmHg.value, self.reader.gas_unit)),
-                self._limit("PaCO2", noise.paco2_fraction, fraction(noise.paco2_fraction.value)),
-                self._limit("P/F", noise.pao2_fraction, fraction(noise.pao2_fraction.value)),
-            ))),
-        )  # fmt: skip
-        title = translate("explain", "Verdict: {verdict}").format(verdict=verdict_word(verdict_of(response.headline)))
-        return Explanation(title, rules, tuple(inputs), tuple(dict.fromkeys(why)), noise.ph.source, noise.ph.sure)
+            translate(
+                "explain",
+                "A gas 30 to 120 minutes after the change judges it against the last gas before it.",
+            ),
+            translate("explain", "Beyond noise is: {limits}.").format(
+                limits="; ".join(
+                    (
+                        self._limit("pH", noise.ph, fixed(noise.ph.value, 3)),
+                        self._limit(
+                            "PaCO2",
+                            noise.paco2_mmHg,
+                            gas_pressure(noise.paco2_mmHg.value, self.reader.gas_unit),
+                        ),
+                        self._limit("PaCO2", noise.paco2_fraction, fraction(noise.paco2_fraction.value)),
+                        self._limit("P/F", noise.pao2_fraction, fraction(noise.pao2_fraction.value)),
+                    )
+                )
+            ),
+        )
+        title = translate("explain", "Verdict: {verdict}").format(
+            verdict=verdict_word(verdict_of(response.headline))
+        )
+        return Explanation(
+            title, rules, tuple(inputs), tuple(dict.fromkeys(why)), noise.ph.source, noise.ph.sure
+        )
 
     def gas(self, gas: GasFigure) -> Explanation:
         """A gas: what was reported, what was computed from it and how, why something is absent."""
         state = self.policy.state
         rules = (
             translate("explain", "Severe: pH below {severe}. Acidotic: pH below {acidotic}.").format(
-                severe=fixed(state.severe_below_ph.value, 2), acidotic=fixed(state.acidotic_below_ph.value, 2)),
+                severe=fixed(state.severe_below_ph.value, 2), acidotic=fixed(state.acidotic_below_ph.value, 2)
+            ),
             "P/F = PaO2 / FiO2",
             "HCO3 = 0.0307 x PCO2 x 10^(pH - 6.1)",
             "SBE = HCO3 - 24.8 + 16.2 x (pH - 7.40)",
-        )  # fmt: skip
+        )
         when = clock(gas.at, self.reader.zone)
         notes = [f"{key.partition('_')[0]}: {sentence(m, self.reader)}" for key, m in gas.reasons.items()]
         notes += [sentence(m, self.reader) for m in gas.warnings]
-        return Explanation(f"{when} {gas_name(gas)}: {gas_words(gas, self.reader.gas_unit)}", rules,
-                           tuple(self._gas_inputs(gas, when)), tuple(notes),
-                           "Henderson-Hasselbalch; CLSI C46", "confirmed")  # fmt: skip
+        return Explanation(
+            f"{when} {gas_name(gas)}: {gas_words(gas, self.reader.gas_unit)}",
+            rules,
+            tuple(self._gas_inputs(gas, when)),
+            tuple(notes),
+            "Henderson-Hasselbalch; CLSI C46",
+            "confirmed",
+        )
 
     def score(self, name: str, score: ScoreFigure) -> Explanation:
         """A score: each input with its value, its time and the points it gave; what is missing."""
         inputs = []
         for key, part in score.inputs.items():
             value = translate("explain", "missing") if part.value is None else _plain(key, part.value)
-            points = "" if part.points is None else translate("explain", ", {points} points").format(
-                points=trimmed(part.points))  # fmt: skip
+            points = (
+                ""
+                if part.points is None
+                else translate("explain", ", {points} points").format(points=trimmed(part.points))
+            )
             when = clock(part.at, self.reader.zone) if part.at is not None else ""
             inputs.append((key.replace("_", " "), f"{value}{points}", when))
         notes = [sentence(m, self.reader) for m in (score.caveat, *score.reasons.values()) if m is not None]
         if score.missing:
-            notes.append(translate("explain", "Missing inputs are taken at their best and at their worst, never as normal."))
+            notes.append(
+                translate(
+                    "explain", "Missing inputs are taken at their best and at their worst, never as normal."
+                )
+            )
         if score.population == "outside":
-            notes.append(translate("explain", "Outside the population it was validated in: shown, never a flag."))
+            notes.append(
+                translate("explain", "Outside the population it was validated in: shown, never a flag.")
+            )
         return Explanation(name, (), tuple(inputs), tuple(notes))
 
     def due(self, due: DueFigure) -> Explanation:
@@ -163,15 +217,24 @@ class Explainer:
         zone = self.reader.zone
         rule = self.policy.due.get(due.what)
         span = translate("explain", "From {start} to {end}.").format(
-            start=wall(due.due_from, zone), end=wall(due.due_until, zone))  # fmt: skip
-        return Explanation(due_name(due.what, self.reader), (sentence(due.because, self.reader), span), (), (),
-                           rule.source if rule else "", rule.sure if rule else "")  # fmt: skip
+            start=wall(due.due_from, zone), end=wall(due.due_until, zone)
+        )
+        return Explanation(
+            due_name(due.what, self.reader),
+            (sentence(due.because, self.reader), span),
+            (),
+            (),
+            rule.source if rule else "",
+            rule.sure if rule else "",
+        )
 
     def lever(self, lever: LeverFigure) -> Explanation:
         """A lever: why it could act or not, and what limits it."""
         texts = (*lever.why, *((lever.present,) if lever.present is not None else ()), *lever.limits)
         note = translate("explain", "A qualified person decides.")
-        return Explanation(lever_name(lever.key, self.reader), tuple(sentence(m, self.reader) for m in texts), (), (note,))
+        return Explanation(
+            lever_name(lever.key, self.reader), tuple(sentence(m, self.reader) for m in texts), (), (note,)
+        )
 
     def _values(self, ph: float | None, paco2: float | None) -> str:
         parts = [f"pH {fixed(ph, 2)}"] if ph is not None else []
@@ -186,7 +249,11 @@ class Explainer:
         unit = self.reader.gas_unit
         rows = (
             ("pH", gas.ph_text or (fixed(gas.ph, 2) if gas.ph is not None else None)),
-            ("PaCO2", gas.paco2_text or (gas_pressure(gas.paco2_mmHg, unit) if gas.paco2_mmHg is not None else None)),
+            (
+                "PaCO2",
+                gas.paco2_text
+                or (gas_pressure(gas.paco2_mmHg, unit) if gas.paco2_mmHg is not None else None),
+            ),
             ("PaO2", gas_pressure(gas.pao2_mmHg, unit) if gas.pao2_mmHg is not None else None),
             ("FiO2", f"{fraction(gas.fio2)} ({gas.fio2_from})" if gas.fio2 is not None else None),
             ("P/F", gas_pressure(gas.pf_mmHg, unit) if gas.pf_mmHg is not None else None),

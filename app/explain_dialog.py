@@ -40,7 +40,9 @@ class ExplainDialog(QDialog):
 def html_of(explanation: Explanation, theme: Theme) -> str:
     """The explanation as rich text in the theme's sizes; everything typed by people is escaped."""
     quiet = theme.colours.ink_quiet
-    parts = [f'<p style="font-size:{theme.px(theme.type.title)}px; font-weight:600">{escape(explanation.title)}</p>']
+    parts = [
+        f'<p style="font-size:{theme.px(theme.type.title)}px; font-weight:600">{escape(explanation.title)}</p>'
+    ]
     parts += [f"<p>{escape(rule)}</p>" for rule in explanation.rules]
     if explanation.inputs:
         rows = "".join(
@@ -50,7 +52,11 @@ def html_of(explanation: Explanation, theme: Theme) -> str:
         )
         parts.append(f"<table cellpadding=3>{rows}</table>")
     parts += [f"<p>{escape(note)}</p>" for note in explanation.notes]
-    tail = [translate("explain", "Source: {source}").format(source=explanation.source)] if explanation.source else []
+    tail = (
+        [translate("explain", "Source: {source}").format(source=explanation.source)]
+        if explanation.source
+        else []
+    )
     if explanation.sure:
         tail.append(translate("explain", "How sure: {sure}").format(sure=sure_words(explanation.sure)))
     parts += [f'<p style="color:{quiet}">{escape(line)}</p>' for line in tail]

@@ -19,9 +19,17 @@ class Fact(QFrame):
     explain_wanted = Signal(object)
 
     def __init__(
-        self, theme: Theme, title: str, lines: Sequence[str] = (), *, sign: Sign | None = None,
-        explanation: Explanation | None = None, folded: Sequence[str] = (), fold_word: str = "", quiet: bool = False,
-    ) -> None:  # fmt: skip
+        self,
+        theme: Theme,
+        title: str,
+        lines: Sequence[str] = (),
+        *,
+        sign: Sign | None = None,
+        explanation: Explanation | None = None,
+        folded: Sequence[str] = (),
+        fold_word: str = "",
+        quiet: bool = False,
+    ) -> None:
         super().__init__()
         self.explanation = explanation
         self._fold_word = fold_word

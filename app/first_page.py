@@ -51,8 +51,12 @@ class FirstPage(QWidget):
         self.new = QPushButton(self.tr("New store..."))
         self.open = QPushButton(self.tr("Open store..."))
         self.file = QPushButton(self.tr("Take in a file..."))
-        for button, signal in ((self.sample, self.sample_wanted), (self.new, self.new_wanted),
-                               (self.open, self.open_wanted), (self.file, self.file_wanted)):  # fmt: skip
+        for button, signal in (
+            (self.sample, self.sample_wanted),
+            (self.new, self.new_wanted),
+            (self.open, self.open_wanted),
+            (self.file, self.file_wanted),
+        ):
             button.clicked.connect(signal)
             row.addWidget(button)
         row.addStretch(1)

@@ -46,11 +46,19 @@ class LineField(QLineEdit):
     completion_wanted = Signal()
 
     def event(self, event: QEvent) -> bool:
-        if event.type() == QEvent.Type.ShortcutOverride and isinstance(event, QKeyEvent) \
-                and not self.text() and event.matches(QKeySequence.StandardKey.Undo):  # fmt: skip
+        if (
+            event.type() == QEvent.Type.ShortcutOverride
+            and isinstance(event, QKeyEvent)
+            and not self.text()
+            and event.matches(QKeySequence.StandardKey.Undo)
+        ):
             event.ignore()
             return False
-        is_tab = event.type() == QEvent.Type.KeyPress and isinstance(event, QKeyEvent) and event.key() == Qt.Key.Key_Tab
+        is_tab = (
+            event.type() == QEvent.Type.KeyPress
+            and isinstance(event, QKeyEvent)
+            and event.key() == Qt.Key.Key_Tab
+        )
         if is_tab and completions(self.text(), self.cursorPosition()):
             self.completion_wanted.emit()
             return True
@@ -101,9 +109,10 @@ class LogStrip(QFrame):
         self._row.addWidget(self.whom)
         self._row.addWidget(self.line, 1)
         for key, word, shortcut in (
-            ("gas sent", self.tr("Gas sent"), "F6"), ("mask", self.tr("Mask off"), "F7"),
+            ("gas sent", self.tr("Gas sent"), "F6"),
+            ("mask", self.tr("Mask off"), "F7"),
             ("checked no change", self.tr("Checked, no change"), "F8"),
-        ):  # fmt: skip
+        ):
             button = QPushButton(f"{word}  {shortcut}")
             button.setAccessibleName(word)
             button.setProperty("role", "small")
@@ -133,9 +142,13 @@ class LogStrip(QFrame):
 
     # whom it is for
 
-    def set_patient(self, record: Episode | None, label: str, zone: str, gas_unit: str, *, off_mask: bool = False) -> None:
+    def set_patient(
+        self, record: Episode | None, label: str, zone: str, gas_unit: str, *, off_mask: bool = False
+    ) -> None:
         """For whom the strip logs. A half-typed line for another patient is taken away, never carried over."""
-        other = (record.key if record is not None else None) != (self._record.key if self._record is not None else None)
+        other = (record.key if record is not None else None) != (
+            self._record.key if self._record is not None else None
+        )
         self._record, self._label, self._zone, self._gas_unit = record, label, zone, gas_unit
         self.whom.setText(label or self.tr("No patient"))
         word = self.tr("Mask on") if off_mask else self.tr("Mask off")
@@ -199,8 +212,13 @@ class LogStrip(QFrame):
             self._become(State.IDLE, self._hint())
             return
         self.state = State.AWAITED
-        self._model.ask(entry.preview, self._request(False), done=self._previewed,
-                        failed=self._refused, subject="strip preview")  # fmt: skip
+        self._model.ask(
+            entry.preview,
+            self._request(False),
+            done=self._previewed,
+            failed=self._refused,
+            subject="strip preview",
+        )
 
     def _request(self, confirmed: bool) -> LineRequest:
         assert self._record is not None
@@ -221,7 +239,9 @@ class LogStrip(QFrame):
         if options and failure.message.key in ("line.word_unknown", "line.value_missing", "value.missing"):
             self._become(State.REFUSED, self._completion_html(options))
         else:
-            self._become(State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader())))
+            self._become(
+                State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader()))
+            )
 
     def _complete(self) -> None:
         options = completions(self.line.text(), self.line.cursorPosition())
@@ -254,12 +274,18 @@ class LogStrip(QFrame):
 
     def _done(self, outcome: Outcome[Recorded]) -> None:
         self._undo = [*self._undo, outcome.value][-MOST_UNDO:]
-        self._become(State.TOLD, self._mark(self.tr("Recorded for {label}.").format(label=self._label),
-                                            self.tr("Ctrl+Z undoes it.")))  # fmt: skip
+        self._become(
+            State.TOLD,
+            self._mark(
+                self.tr("Recorded for {label}.").format(label=self._label), self.tr("Ctrl+Z undoes it.")
+            ),
+        )
         self.recorded.emit(outcome.value)
 
     def _failed(self, failure: Failure) -> None:
-        self._become(State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader())))
+        self._become(
+            State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader()))
+        )
 
     # undo
 
@@ -283,8 +309,10 @@ class LogStrip(QFrame):
 
     def _undone(self, outcome: Outcome[Recorded]) -> None:
         names = ", ".join(dict.fromkeys(channel_name(e.channel) for e in outcome.value.entries))
-        self._become(State.TOLD, self._mark(self.tr("Undone: {what}.").format(what=names),
-                                            self.tr("The record keeps both.")))  # fmt: skip
+        self._become(
+            State.TOLD,
+            self._mark(self.tr("Undone: {what}.").format(what=names), self.tr("The record keeps both.")),
+        )
         self.recorded.emit(outcome.value)
 
     # words
@@ -305,7 +333,9 @@ class LogStrip(QFrame):
     def _hint(self) -> str:
         if self._record is None:
             return escape(self.tr("Choose a patient first."))
-        text = self.tr("/ goes to the line. What you type is shown here before Enter records it. Tab completes, Esc leaves.")
+        text = self.tr(
+            "/ goes to the line. What you type is shown here before Enter records it. Tab completes, Esc leaves."
+        )
         return f"<span style='color:{self._theme.colours.ink_quiet}'>{escape(text)}</span>"
 
     def _preview_html(self, words: PreviewWords) -> str:
@@ -324,7 +354,8 @@ class LogStrip(QFrame):
         first, *rest = options
         others = "&nbsp;&nbsp; ".join(escape(w) for w in rest)
         tab = escape(self.tr("Tab:"))
-        return f"<span style='color:{quiet}'>{tab}</span> <b>{escape(first)}</b>&nbsp;&nbsp; <span style='color:{quiet}'>{others}</span>"
+        start = f"<span style='color:{quiet}'>{tab}</span> <b>{escape(first)}</b>"
+        return f"{start}&nbsp;&nbsp; <span style='color:{quiet}'>{others}</span>"
 
     def _mark(self, strong: str, rest: str) -> str:
         return f"<b>{escape(strong)}</b> {escape(rest)}"
@@ -333,4 +364,3 @@ class LogStrip(QFrame):
         self.state = state
         self.said.setText(html)
         self.said.setAccessibleName(self.plain())
-

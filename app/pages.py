@@ -63,7 +63,12 @@ class Pages(QStackedWidget):
     @property
     def name(self) -> str:
         """The name of the page that shows."""
-        names = {self.ward: "ward", self._episode: "episode", self._compare: "compare", self._handover: "handover"}
+        names = {
+            self.ward: "ward",
+            self._episode: "episode",
+            self._compare: "compare",
+            self._handover: "handover",
+        }
         return names.get(self.currentWidget(), "")  # type: ignore[call-overload, no-any-return]
 
     def page(self, name: str) -> QWidget:

@@ -72,16 +72,28 @@ def checked(panel: Panel) -> Panel:
         raise refuse("panel.empty", title=panel.title, accepted="one channel or more")
     for c in panel.channels:
         if not can_be_drawn(c):
-            raise refuse("panel.channel_unknown", title=panel.title, channel=c, accepted=", ".join(drawable()))
+            raise refuse(
+                "panel.channel_unknown", title=panel.title, channel=c, accepted=", ".join(drawable())
+            )
     if len(panel.channels) > MOST_CHANNELS:
-        raise refuse("panel.too_many_channels", title=panel.title, count=len(panel.channels),
-                     accepted=MOST_CHANNELS)  # fmt: skip
+        raise refuse(
+            "panel.too_many_channels", title=panel.title, count=len(panel.channels), accepted=MOST_CHANNELS
+        )
     if len(units_of(panel.channels)) > 2:
-        raise refuse("panel.too_many_units", title=panel.title, units=", ".join(units_of(panel.channels)),
-                     accepted="one or two units")  # fmt: skip
+        raise refuse(
+            "panel.too_many_units",
+            title=panel.title,
+            units=", ".join(units_of(panel.channels)),
+            accepted="one or two units",
+        )
     if panel.low is not None and panel.high is not None and panel.low >= panel.high:
-        raise refuse("panel.axis_upside_down", title=panel.title, low=panel.low, high=panel.high,
-                     accepted="the low end below the high end")  # fmt: skip
+        raise refuse(
+            "panel.axis_upside_down",
+            title=panel.title,
+            low=panel.low,
+            high=panel.high,
+            accepted="the low end below the high end",
+        )
     height = min(max(panel.height, LEAST_HEIGHT), MOST_HEIGHT)
     return replace(panel, title=panel.title.strip(), height=height)
 
@@ -159,7 +171,13 @@ def shipped(family: str, titles: Mapping[str, str]) -> PanelSet:
     leak = Panel("leak", titles["leak"], ("leak", "vte"))
     if family == "hypoxaemic":
         oxygen = Panel("oxygen", titles["oxygen"], ("spo2", "pf"), 1.4)
-        return PanelSet((oxygen, Panel("breathing", titles["breathing"], ("rr", "rr_total", "vte")), replace(gas, height=1.0)))
+        return PanelSet(
+            (
+                oxygen,
+                Panel("breathing", titles["breathing"], ("rr", "rr_total", "vte")),
+                replace(gas, height=1.0),
+            )
+        )
     return PanelSet((gas, Panel("breathing", titles["both"], ("spo2", "rr", "rr_total")), leak))
 
 
@@ -184,8 +202,13 @@ def to_toml(panels: PanelSet) -> str:
     """The set as TOML, to be carried to another store."""
     lines = [f"format = {FORMAT}", ""]
     for p in panels.panels:
-        lines += ["[[panels]]", f"key = {json.dumps(p.key)}", f"title = {json.dumps(p.title, ensure_ascii=False)}",
-                  f"channels = {json.dumps(list(p.channels))}", f"height = {float(p.height)!r}"]  # fmt: skip
+        lines += [
+            "[[panels]]",
+            f"key = {json.dumps(p.key)}",
+            f"title = {json.dumps(p.title, ensure_ascii=False)}",
+            f"channels = {json.dumps(list(p.channels))}",
+            f"height = {float(p.height)!r}",
+        ]
         lines += [f"{k} = {float(v)!r}" for k, v in (("low", p.low), ("high", p.high)) if v is not None]
         lines += [f"bands = {'true' if p.bands else 'false'}", ""]
     return "\n".join(lines)

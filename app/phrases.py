@@ -88,7 +88,9 @@ def change_word(stretch: Stretch) -> str:
         parts.append(settings_word(stretch.settings))
     if changed.keys() & {"fio2", "o2_flow"}:
         s = stretch.settings
-        parts.append(fraction(s.fio2) if known(s.fio2) else f"{trimmed(s.o2_flow)} L/min" if known(s.o2_flow) else "")
+        parts.append(
+            fraction(s.fio2) if known(s.fio2) else f"{trimmed(s.o2_flow)} L/min" if known(s.o2_flow) else ""
+        )
     if not parts:
         key = next(iter(changed), "")
         parts.append(f"{channel_name(key)} {quantity(key, getattr(stretch.settings, key))}" if key else "")
@@ -159,13 +161,16 @@ def verdict_or_none(text: str | None) -> Verdict | None:
     return None if text is None else verdict_of(text)
 
 
-def support_now(mode: str | None, ipap: float | None, epap: float | None, fio2: float | None,
-                o2_flow: float | None) -> str:  # fmt: skip
+def support_now(
+    mode: str | None, ipap: float | None, epap: float | None, fio2: float | None, o2_flow: float | None
+) -> str:
     """Settings as figures give them, short: BPAP-ST 20/6, 35 %."""
     parts = [MODE_SHORT.get(mode or "", mode or "")]
     if ipap is not None and epap is not None:
         parts.append(f"{trimmed(ipap)}/{trimmed(epap)}")
     elif epap is not None:
         parts.append(trimmed(epap))
-    oxygen = fraction(fio2) if fio2 is not None else f"{trimmed(o2_flow)} L/min O2" if o2_flow is not None else ""
+    oxygen = (
+        fraction(fio2) if fio2 is not None else f"{trimmed(o2_flow)} L/min O2" if o2_flow is not None else ""
+    )
     return ", ".join(p for p in (" ".join(p for p in parts if p), oxygen) if p)

@@ -20,10 +20,15 @@ class TopBar(QWidget):
     def __init__(self, theme: Theme) -> None:
         super().__init__()
         self._theme = theme
-        self.pages = ChoiceRow("", (
-            ("ward", self.tr("Ward")), ("episode", self.tr("Episode")), ("compare", self.tr("Compare")),
-            ("handover", self.tr("Handover")),
-        ))  # fmt: skip
+        self.pages = ChoiceRow(
+            "",
+            (
+                ("ward", self.tr("Ward")),
+                ("episode", self.tr("Episode")),
+                ("compare", self.tr("Compare")),
+                ("handover", self.tr("Handover")),
+            ),
+        )
         self.moment = QLabel()
         self.moment.setProperty("role", "strong")
         self.moment.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Maximum)
@@ -65,7 +70,9 @@ class TopBar(QWidget):
         self.moment.style().polish(self.moment)
         self.moment.updateGeometry()
         self.person.setText(session.person or self.tr("Who are you?"))
-        self.person.setAccessibleName(self.tr("Person: {who}").format(who=session.person or self.tr("nobody signed in")))
+        self.person.setAccessibleName(
+            self.tr("Person: {who}").format(who=session.person or self.tr("nobody signed in"))
+        )
 
     def _want_person(self) -> None:
         self.person_wanted.emit()

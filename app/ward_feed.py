@@ -88,5 +88,6 @@ class WardFeed(QObject):
         session = self._model.session
         as_of = session.moment()
         shift = shift_of(as_of, session.zone, self._preferences.shift_starts)
-        return WardContent(tuple(self._on_ward.values()), as_of, shift, session.zone, self._preferences.gas_unit)
-
+        return WardContent(
+            tuple(self._on_ward.values()), as_of, shift, session.zone, self._preferences.gas_unit
+        )

@@ -57,7 +57,9 @@ class _Line(QLabel):
         self._fit()
 
     def _fit(self) -> None:
-        self.setText(QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width()))
+        self.setText(
+            QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width())
+        )
 
 
 class WardView(QWidget):
@@ -78,10 +80,22 @@ class WardView(QWidget):
         self.lanes = WardLanes(theme)
         self.status = _Line()
         self.status.setProperty("role", "quiet")
-        self.sort = ChoiceRow(self.tr("Sort by"), (
-            (Order.CONCERN, self.tr("concern")), (Order.BED, self.tr("bed")), (Order.DUE, self.tr("next due"))))  # fmt: skip
-        self.filter = ChoiceRow(self.tr("Show"), (
-            (Shown.ALL, self.tr("all")), (Shown.NOT_RESPONDING, self.tr("not responding")), (Shown.DUE, self.tr("due soon"))))  # fmt: skip
+        self.sort = ChoiceRow(
+            self.tr("Sort by"),
+            (
+                (Order.CONCERN, self.tr("concern")),
+                (Order.BED, self.tr("bed")),
+                (Order.DUE, self.tr("next due")),
+            ),
+        )
+        self.filter = ChoiceRow(
+            self.tr("Show"),
+            (
+                (Shown.ALL, self.tr("all")),
+                (Shown.NOT_RESPONDING, self.tr("not responding")),
+                (Shown.DUE, self.tr("due soon")),
+            ),
+        )
         self.shift = QLabel()
         self.shift.setProperty("role", "quiet")
         self.search = QLineEdit()
@@ -169,16 +183,26 @@ class WardView(QWidget):
         top = first_to_see(ward)
         words = LaneWords(Reader(content.zone, content.gas_unit), content.as_of)
         labels = [f.label for f in ward]
-        lanes = [words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1)
-                 for f in ordered(shown(ward, self._shown, self.search.text()), self._order)]  # fmt: skip
+        lanes = [
+            words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1)
+            for f in ordered(shown(ward, self._shown, self.search.text()), self._order)
+        ]
         self._tell_first(words)
         self._tell_shift(content)
-        self.lanes.set_spec(LanesSpec(
-            ZoneInfo(content.zone), content.shift.start, content.shift.end, tuple(lanes),
-            content.as_of if content.shift.start <= content.as_of <= content.shift.end else None, self.tr("now"),
-            self.tr("Bed"), self.tr("State now, next due"), self._empty_word(),
-            self.tr("Ward: {count} episodes along the shift's clock").format(count=len(lanes)),
-        ))  # fmt: skip
+        self.lanes.set_spec(
+            LanesSpec(
+                ZoneInfo(content.zone),
+                content.shift.start,
+                content.shift.end,
+                tuple(lanes),
+                content.as_of if content.shift.start <= content.as_of <= content.shift.end else None,
+                self.tr("now"),
+                self.tr("Bed"),
+                self.tr("State now, next due"),
+                self._empty_word(),
+                self.tr("Ward: {count} episodes along the shift's clock").format(count=len(lanes)),
+            )
+        )
         self.status.say(self.lanes.sentence_of_selection())
 
     def _tell_first(self, words: LaneWords) -> None:
@@ -188,7 +212,11 @@ class WardView(QWidget):
             self.first.show_first("", "", "", None)
             return
         flag = strongest_flag(top)
-        why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)
+        why = (
+            sentence(top.concern.why, words.reader)
+            if top.concern.why is not None
+            else words.lane_sentence(top)
+        )
         self.first.show_first(top.episode, top.label, why, Tier(flag.tier) if flag is not None else None)
 
     def _tell_shift(self, content: WardContent) -> None:

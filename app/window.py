@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from PySide6.QtCore import Signal
@@ -13,6 +13,7 @@ from app import preferences as kept
 from app.actions import DEEDS, fill_menus, make_actions
 from app.deeds import Doers
 from app.episode_feed import EpisodeFeed
+from app.episode_shown import EpisodeOnScreen
 from app.failure import Failure
 from app.first_page import FirstPage
 from app.log_strip import LogStrip
@@ -32,6 +33,17 @@ USUAL_SIZE = (1280, 800)
 ASK_PASSPHRASE = ("store.needs_passphrase", "key.wrong_passphrase")
 
 
+@dataclass(frozen=True, slots=True)
+class Opened:
+    """What there is while a store is open."""
+
+    model: SessionModel
+    feed: WardFeed
+    episode_feed: EpisodeFeed
+    pages: Pages
+    strip: LogStrip
+
+
 class MainWindow(QMainWindow):
     """Shows the first page until `show_model` gives it a session."""
 
@@ -41,11 +53,7 @@ class MainWindow(QMainWindow):
     def __init__(self, preferences: Preferences, keep_at: Path | None = None) -> None:
         super().__init__()
         self.preferences, self._keep_at = preferences, keep_at
-        self.model: SessionModel | None = None
-        self.feed: WardFeed | None = None
-        self.episode_feed: EpisodeFeed | None = None
-        self.pages: Pages | None = None
-        self.strip: LogStrip | None = None
+        self.opened: Opened | None = None
         self.doers = Doers(self)
         self.actions_by_key = make_actions(self, self.doers.of)
         fill_menus(self.menuBar(), self.actions_by_key)
@@ -69,6 +77,38 @@ class MainWindow(QMainWindow):
         self.first: FirstPage | None = None
         self.show_first_page()
 
+    # what is open
+
+    @property
+    def model(self) -> SessionModel | None:
+        """The session, or None before a store is open."""
+        return self.opened.model if self.opened is not None else None
+
+    @property
+    def feed(self) -> WardFeed | None:
+        """The ward's figures."""
+        return self.opened.feed if self.opened is not None else None
+
+    @property
+    def episode_feed(self) -> EpisodeFeed | None:
+        """What the episode view shows."""
+        return self.opened.episode_feed if self.opened is not None else None
+
+    @property
+    def pages(self) -> Pages | None:
+        """The pages."""
+        return self.opened.pages if self.opened is not None else None
+
+    @property
+    def strip(self) -> LogStrip | None:
+        """The log strip."""
+        return self.opened.strip if self.opened is not None else None
+
+    def _now_open(self) -> Opened:
+        if self.opened is None:
+            raise RuntimeError("no store is open")
+        return self.opened
+
     # look
 
     @property
@@ -90,9 +130,9 @@ class MainWindow(QMainWindow):
             kept.save(self._keep_at, self.preferences)
         if (before.theme, before.text_scale) != (self.preferences.theme, self.preferences.text_scale):
             self._dress()
-        if self.feed is not None and self.episode_feed is not None:
-            self.feed.set_preferences(self.preferences)
-            self.episode_feed.set_gas_unit(self.preferences.gas_unit)
+        if self.opened is not None:
+            self.opened.feed.set_preferences(self.preferences)
+            self.opened.episode_feed.set_gas_unit(self.preferences.gas_unit)
         self._set_ticks()
 
     def _dress(self) -> None:
@@ -100,9 +140,9 @@ class MainWindow(QMainWindow):
         if isinstance(app, QApplication):
             apply_theme(app, self.theme)
         self.top.set_theme(self.theme)
-        if self.pages is not None and self.strip is not None:
-            self.pages.set_theme(self.theme)
-            self.strip.set_theme(self.theme)
+        if self.opened is not None:
+            self.opened.pages.set_theme(self.theme)
+            self.opened.strip.set_theme(self.theme)
         elif self.first is not None:
             self.show_first_page()
         self._place_top()
@@ -158,73 +198,68 @@ class MainWindow(QMainWindow):
         self.close_model()
         self._clear_column()
         self.first = None
-        self.model = model
-        self.feed = WardFeed(model, self.preferences, self)
-        self.episode_feed = EpisodeFeed(model, self.feed, self.preferences.gas_unit, self)
-        self.pages = Pages(self.theme)
-        self.strip = LogStrip(self.theme, model)
-        self._column.addWidget(self.pages, 1)
+        feed = WardFeed(model, self.preferences, self)
+        episode_feed = EpisodeFeed(model, feed, self.preferences.gas_unit, self)
+        self.opened = Opened(model, feed, episode_feed, Pages(self.theme), LogStrip(self.theme, model))
+        self._column.addWidget(self.opened.pages, 1)
         self._column.addWidget(self.progress)
         foot = QVBoxLayout()
         px = self.theme.px
         foot.setContentsMargins(px(12), 0, px(12), px(8))
-        foot.addWidget(self.strip)
+        foot.addWidget(self.opened.strip)
         self._column.addLayout(foot)
-        self._connect(model)
+        self._connect(self.opened)
         self._tell_session()
         self._place_top()
-        self.pages.ward.lanes.setFocus()
+        self.opened.pages.ward.lanes.setFocus()
         model.start()
 
-    def _connect(self, model: SessionModel) -> None:
-        assert self.feed is not None and self.pages is not None and self.strip is not None
-        assert self.episode_feed is not None
-        model.changed.connect(self._model_changed)
-        model.failed.connect(self.show_failure)
-        model.runner.progressed.connect(self.progress.show_progress)
-        model.runner.busy_changed.connect(self.progress.busy_changed)
-        self.progress.cancelled.connect(model.runner.cancel)
-        self.feed.refreshed.connect(self._ward_refreshed)
-        self.episode_feed.refreshed.connect(self._episode_refreshed)
-        self.pages.ward.opened.connect(self.open_episode)
-        self.pages.ward.selected.connect(self.select)
-        self.pages.made.connect(self._page_made)
-        self.strip.left.connect(self._focus_page)
+    def _connect(self, o: Opened) -> None:
+        o.model.changed.connect(self._model_changed)
+        o.model.failed.connect(self.show_failure)
+        o.model.runner.progressed.connect(self.progress.show_progress)
+        o.model.runner.busy_changed.connect(self.progress.busy_changed)
+        self.progress.cancelled.connect(o.model.runner.cancel)
+        o.feed.refreshed.connect(self._ward_refreshed)
+        o.episode_feed.refreshed.connect(self._episode_refreshed)
+        o.pages.ward.opened.connect(self.open_episode)
+        o.pages.ward.selected.connect(self.select)
+        o.pages.made.connect(self._page_made)
+        o.strip.left.connect(self._focus_page)
 
     def _page_made(self, name: str) -> None:
-        assert self.pages is not None
+        pages = self._now_open().pages
         if name == "episode":
-            view = self.pages.episode
-            view.back.connect(self._to_ward)
-            view.explain_wanted.connect(self.doers.view.explain)
-            view.panels_wanted.connect(self.actions_by_key["panels"].trigger)
+            pages.episode.back.connect(self._to_ward)
+            pages.episode.explain_wanted.connect(self.doers.view.explain)
+            pages.episode.panels_wanted.connect(self.actions_by_key["panels"].trigger)
         elif name == "handover":
-            self.pages.handover.save_wanted.connect(self.actions_by_key["save_handover"].trigger)
-            self.pages.handover.back.connect(self._to_ward)
+            pages.handover.save_wanted.connect(self.actions_by_key["save_handover"].trigger)
+            pages.handover.back.connect(self._to_ward)
         elif name == "compare":
-            self.pages.compare.back.connect(self._to_ward)
-            self.pages.compare.opened.connect(self.open_episode)
+            pages.compare.back.connect(self._to_ward)
+            pages.compare.opened.connect(self.open_episode)
 
     def show_page(self, name: str) -> None:
         """Show a page and give it the focus."""
-        if self.pages is None or (name == "episode" and self.model is not None and self.model.session.selection is None):
-            self.top.pages.choose(self.pages.name if self.pages is not None else "ward")
+        o = self._now_open()
+        if name == "episode" and o.model.session.selection is None:
+            self.top.pages.choose(o.pages.name)
             return
-        page = self.pages.page(name)
-        self.pages.setCurrentWidget(page)
+        o.pages.setCurrentWidget(o.pages.page(name))
         self.top.pages.choose(name)
-        if name == "episode" and self.episode_feed is not None:
-            self.episode_feed.show_selection()
+        if name == "episode":
+            o.episode_feed.show_selection()
         elif name == "handover":
             self.doers.ward.show_handover_text()
-        elif name == "compare" and self.feed is not None:
-            self.pages.compare.show_ward(self.feed.content(), self.feed.answers)
+        elif name == "compare":
+            o.pages.compare.show_ward(o.feed.content(), o.feed.answers)
         self._focus_page()
 
     def _focus_page(self) -> None:
-        assert self.pages is not None
+        pages = self._now_open().pages
         focus = {"ward": "lanes", "episode": "stack", "handover": "text", "compare": "list"}
-        getattr(self.pages.page(self.pages.name), focus[self.pages.name]).setFocus()
+        getattr(pages.page(pages.name), focus[pages.name]).setFocus()
 
     def _to_ward(self) -> None:
         self.show_page("ward")
@@ -243,8 +278,7 @@ class MainWindow(QMainWindow):
 
     def shift(self) -> Shift:
         """The shift that is looked at."""
-        assert self.model is not None
-        session = self.model.session
+        session = self._now_open().model.session
         return shift_of(session.moment(), session.zone, self.preferences.shift_starts)
 
     # news
@@ -256,40 +290,38 @@ class MainWindow(QMainWindow):
             self._tell_session()
 
     def _tell_session(self) -> None:
-        assert self.model is not None
-        self.top.show_session(self.model.session)
+        session = self._now_open().model.session
+        self.top.show_session(session)
         self._place_top()
-        name = self.model.session.store_path.name
-        self.setWindowTitle(self.tr("{store} - Luffmark").format(store=name))
+        self.setWindowTitle(self.tr("{store} - Luffmark").format(store=session.store_path.name))
 
     def _ward_refreshed(self, content: WardContent) -> None:
-        assert self.pages is not None and self.model is not None
-        self.pages.ward.show_ward(content)
-        if self.model.session.selection is None and self.pages.ward.keys():
-            self.model.select(self.pages.ward.keys()[0])
+        o = self._now_open()
+        o.pages.ward.show_ward(content)
+        if o.model.session.selection is None and o.pages.ward.keys():
+            o.model.select(o.pages.ward.keys()[0])
         else:
             self._selection_changed()
-        if self.pages.name == "compare" and self.feed is not None:
-            self.pages.compare.show_ward(content, self.feed.answers)
+        if o.pages.name == "compare":
+            o.pages.compare.show_ward(content, o.feed.answers)
         self.shown_ward.emit()
 
     def _selection_changed(self) -> None:
-        assert self.model is not None and self.feed is not None and self.strip is not None and self.pages is not None
-        key = self.model.session.selection
-        answer = self.feed.answers.get(key) if key is not None else None
-        if answer is None or key is None:
-            self.strip.set_patient(None, "", self.model.session.zone, self.preferences.gas_unit)
+        o, unit = self._now_open(), self.preferences.gas_unit
+        session = o.model.session
+        answer = o.feed.answers.get(session.selection or "")
+        if answer is None:
+            o.strip.set_patient(None, "", session.zone, unit)
         else:
-            f = answer.figures
-            self.strip.set_patient(answer.record, f.label, self.model.session.zone, self.preferences.gas_unit,
-                                   off_mask=f.support.break_since is not None)  # fmt: skip
-            self.pages.ward.select(key)
+            off_mask = answer.figures.support.break_since is not None
+            o.strip.set_patient(answer.record, answer.figures.label, session.zone, unit, off_mask=off_mask)
+            o.pages.ward.select(answer.figures.episode)
         self._set_ticks()
 
-    def _episode_refreshed(self, on: object) -> None:
-        assert self.pages is not None and self.model is not None
-        if self.pages.name == "episode":
-            self.pages.episode.show_episode(on, self.model.session.moment())  # type: ignore[arg-type]
+    def _episode_refreshed(self, on: EpisodeOnScreen) -> None:
+        o = self._now_open()
+        if o.pages.name == "episode":
+            o.pages.episode.show_episode(on, o.model.session.moment())
 
     def show_failure(self, failure: Failure) -> None:
         """Say in the strip what did not succeed; a store that wants its passphrase asks for it."""
@@ -307,11 +339,12 @@ class MainWindow(QMainWindow):
 
     def close_model(self) -> None:
         """Close the session; what was typed and sent is recorded first."""
-        if self.model is None:
+        if self.opened is None:
             return
-        self.model.close()
-        self.model.deleteLater()
-        self.model = self.feed = self.episode_feed = self.pages = self.strip = None
+        o, self.opened = self.opened, None
+        o.model.close()
+        for part in (o.episode_feed, o.feed, o.model):
+            part.deleteLater()
 
     def closeEvent(self, event: QCloseEvent) -> None:
         box = self.geometry()

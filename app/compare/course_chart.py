@@ -84,12 +84,20 @@ class CourseChart(QWidget):
         view = self._view(box)
         painter.setFont(theme.font(theme.type.body, bold=True))
         painter.setPen(QColor(c.ink))
-        painter.drawText(QRectF(view.left(), box.top() + px(4), view.width(), px(20)), Qt.AlignmentFlag.AlignLeft, row.title)
+        painter.drawText(
+            QRectF(view.left(), box.top() + px(4), view.width(), px(20)),
+            Qt.AlignmentFlag.AlignLeft,
+            row.title,
+        )
         width = painter.fontMetrics().horizontalAdvance(row.title)
         painter.setFont(theme.font(theme.type.caption))
         painter.setPen(QColor(c.ink_quiet))
         unit = "" if row.unit == "pH" else row.unit
-        painter.drawText(QRectF(view.left() + width + px(8), box.top() + px(6), px(120), px(20)), Qt.AlignmentFlag.AlignLeft, unit)
+        painter.drawText(
+            QRectF(view.left() + width + px(8), box.top() + px(6), px(120), px(20)),
+            Qt.AlignmentFlag.AlignLeft,
+            unit,
+        )
         ticks, decimals = value_ticks(row.low, row.high, view.height(), px(26))
         for value in ticks:
             y = round(self._y(value, row, view))
@@ -99,7 +107,10 @@ class CourseChart(QWidget):
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         taken: list[float] = []
-        for line in sorted(row.lines, key=lambda x: -x.values[np.isfinite(x.values)][-1] if np.isfinite(x.values).any() else 0):
+        for line in sorted(
+            row.lines,
+            key=lambda x: -x.values[np.isfinite(x.values)][-1] if np.isfinite(x.values).any() else 0,
+        ):
             self._draw_line(painter, line, row, view, taken)
         painter.restore()
 
@@ -109,7 +120,11 @@ class CourseChart(QWidget):
     def _draw_line(self, painter: QPainter, line: Line, row: Row, view: QRectF, taken: list[float]) -> None:
         theme, px = self._theme, self._theme.px
         pen = pen_of(theme, line.number)
-        points = [QPointF(self._x(h, view), self._y(v, row, view)) for h, v in zip(line.hours, line.values, strict=True) if v == v]
+        points = [
+            QPointF(self._x(h, view), self._y(v, row, view))
+            for h, v in zip(line.hours, line.values, strict=True)
+            if v == v
+        ]
         if not points:
             return
         painter.save()
@@ -142,7 +157,11 @@ class CourseChart(QWidget):
         for n in range(int(np.ceil(first / step)), int(last / step) + 1):
             hour = n * step
             word = self.tr("start") if hour == 0 else f"{hour:g} h"
-            painter.drawText(QRectF(self._x(hour, view) - px(30), box.top(), px(60), px(18)), Qt.AlignmentFlag.AlignCenter, word)
+            painter.drawText(
+                QRectF(self._x(hour, view) - px(30), box.top(), px(60), px(18)),
+                Qt.AlignmentFlag.AlignCenter,
+                word,
+            )
 
 
 def _stepped(points: list[QPointF]) -> list[QPointF]:

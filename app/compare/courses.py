@@ -80,8 +80,10 @@ def _row(key: str, chosen: Sequence[OnWard], answers: Mapping[str, EpisodeAnswer
     values = np.concatenate([line.values for line in lines]) if lines else np.empty(0)
     values = values[np.isfinite(values)]
     low, high = (float(values.min()), float(values.max())) if values.size else (0.0, 1.0)
-    air = max((high - low) * 0.1, 10 ** -shown.decimals)
-    title = {"ph": "pH", "paco2": "PaCO2", "rr": translate("compare", "Respiratory rate")}.get(key) or computed_name(key)
+    air = max((high - low) * 0.1, 10**-shown.decimals)
+    title = {"ph": "pH", "paco2": "PaCO2", "rr": translate("compare", "Respiratory rate")}.get(
+        key
+    ) or computed_name(key)
     return Row(key, title, shown.unit, shown.decimals, low - air, high + air, tuple(lines))
 
 
@@ -89,7 +91,9 @@ def _values(key: str, one: OnWard, answer: EpisodeAnswer) -> tuple[np.ndarray, n
     if key == "pressure_support":
         stretches = one.course.stretches
         t = [s.start for s in stretches] + ([stretches[-1].end] if stretches else [])
-        v = [s.settings.pressure_support for s in stretches] + ([stretches[-1].settings.pressure_support] if stretches else [])
+        v = [s.settings.pressure_support for s in stretches] + (
+            [stretches[-1].settings.pressure_support] if stretches else []
+        )
         return np.array(t, np.int64), np.array(v, np.float64)
     if key == "rr":
         return _rate(answer, one.course.until)
@@ -116,7 +120,10 @@ def words_of(comparison: Comparison) -> Iterator[str]:
             if finite.size:
                 first, last = int(finite[0]), int(finite[-1])
                 yield translate("compare", "{row}, {name}: {first} at {h1} h, {last} at {h2} h").format(
-                    row=row.title, name=comparison.names[line.number], first=fixed(line.values[first], row.decimals),
-                    h1=fixed(line.hours[first], 1), last=fixed(line.values[last], row.decimals),
+                    row=row.title,
+                    name=comparison.names[line.number],
+                    first=fixed(line.values[first], row.decimals),
+                    h1=fixed(line.hours[first], 1),
+                    last=fixed(line.values[last], row.decimals),
                     h2=fixed(line.hours[last], 1),
-                )  # fmt: skip
+                )

@@ -37,15 +37,23 @@ class FileDeeds(Doer):
 
     def do_new_store(self) -> None:
         """Ask where, make an empty store, open it."""
-        chosen, _ = QFileDialog.getSaveFileName(self.window, self.tr("New store"), str(_usual_folder() / "ward.luffmark"),
-                                                self.tr("Stores (*.luffmark)"))  # fmt: skip
+        chosen, _ = QFileDialog.getSaveFileName(
+            self.window,
+            self.tr("New store"),
+            str(_usual_folder() / "ward.luffmark"),
+            self.tr("Stores (*.luffmark)"),
+        )
         if chosen:
             self.open_path(Path(chosen), create=True)
 
     def do_open_store(self) -> None:
         """Ask which, open it."""
-        chosen, _ = QFileDialog.getOpenFileName(self.window, self.tr("Open store"), str(_usual_folder()),
-                                                self.tr("Stores (*.luffmark);;All files (*)"))  # fmt: skip
+        chosen, _ = QFileDialog.getOpenFileName(
+            self.window,
+            self.tr("Open store"),
+            str(_usual_folder()),
+            self.tr("Stores (*.luffmark);;All files (*)"),
+        )
         if chosen:
             self.open_path(Path(chosen))
 
@@ -56,9 +64,11 @@ class FileDeeds(Doer):
     def open_path(self, path: Path, *, passphrase: str | None = None, create: bool = False) -> None:
         """Open a store, or make it first."""
         self._last = _Opening(path, passphrase, create)
-        opener: Opener = partial(_create if create else _open, path, passphrase, self.window.preferences.person)
+        opener: Opener = partial(
+            _create if create else _open, path, passphrase, self.window.preferences.person
+        )
         session = Session(path, zone=local_zone(), clock=REAL, person=self.window.preferences.person)
-        self.window.prefer(**{"recent_stores": self.window.preferences.with_store(str(path)).recent_stores})
+        self.window.prefer(recent_stores=self.window.preferences.with_store(str(path)).recent_stores)
         self.show(session, opener)
 
     def do_sample_shift(self) -> None:
@@ -67,8 +77,13 @@ class FileDeeds(Doer):
 
         self.forget_sample()
         self._sample = Path(tempfile.mkdtemp(prefix="luffmark-sample-"))
-        session = Session(self._sample / demo.STORE_NAME, zone=demo.ZONE, clock=running_from(demo.demo_now()),
-                          person=demo.BY, is_demo=True)  # fmt: skip
+        session = Session(
+            self._sample / demo.STORE_NAME,
+            zone=demo.ZONE,
+            clock=running_from(demo.demo_now()),
+            person=demo.BY,
+            is_demo=True,
+        )
         self.show(session, partial(_make_sample, self._sample))
 
     def forget_sample(self) -> None:
@@ -87,8 +102,12 @@ class FileDeeds(Doer):
         last = self._last
         if last is None:
             return
-        text, given = QInputDialog.getText(self.window, self.tr("Passphrase"), self.tr("Passphrase of {store}").format(
-            store=last.path.name), QLineEdit.EchoMode.Password)  # fmt: skip
+        text, given = QInputDialog.getText(
+            self.window,
+            self.tr("Passphrase"),
+            self.tr("Passphrase of {store}").format(store=last.path.name),
+            QLineEdit.EchoMode.Password,
+        )
         if given and text:
             self.open_path(last.path, passphrase=text)
         else:
@@ -103,8 +122,12 @@ class FileDeeds(Doer):
             self.do_new_store()
             if self.window.model is None:
                 return
-        chosen, _ = QFileDialog.getOpenFileName(self.window, self.tr("Take in a file"), str(Path.home()),
-                                                self.tr("Log files (*.csv);;All files (*)"))  # fmt: skip
+        chosen, _ = QFileDialog.getOpenFileName(
+            self.window,
+            self.tr("Take in a file"),
+            str(Path.home()),
+            self.tr("Log files (*.csv);;All files (*)"),
+        )
         if chosen:
             self.take_in(Path(chosen))
 
@@ -118,15 +141,17 @@ class FileDeeds(Doer):
 
     def do_save_handover(self) -> None:
         """Ask where, write the handover sheet as PDF."""
-        chosen, _ = QFileDialog.getSaveFileName(self.window, self.tr("Save handover"), str(Path.home() / "handover.pdf"),
-                                                self.tr("PDF (*.pdf)"))  # fmt: skip
+        chosen, _ = QFileDialog.getSaveFileName(
+            self.window, self.tr("Save handover"), str(Path.home() / "handover.pdf"), self.tr("PDF (*.pdf)")
+        )
         if chosen:
             self.window.doers.ward.save_handover(Path(chosen))
 
     def do_save_picture(self) -> None:
         """Ask where, save what the window shows."""
-        chosen, _ = QFileDialog.getSaveFileName(self.window, self.tr("Save picture"), str(Path.home() / "luffmark.png"),
-                                                self.tr("PNG (*.png)"))  # fmt: skip
+        chosen, _ = QFileDialog.getSaveFileName(
+            self.window, self.tr("Save picture"), str(Path.home() / "luffmark.png"), self.tr("PNG (*.png)")
+        )
         if chosen and not self.window.grab().save(chosen):
             self.window.say(self.tr("{path} could not be written.").format(path=chosen))
 

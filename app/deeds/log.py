@@ -48,13 +48,16 @@ class LogDeeds(Doer):
         from app.dialogs.new_episode import NewEpisodeDialog
 
         session = self.model.session
-        self._dialog = NewEpisodeDialog(session.policy, session.now(), self.window.reader, self._begin,
-                                        self.window.theme, self.window)  # fmt: skip
+        self._dialog = NewEpisodeDialog(
+            session.policy, session.now(), self.window.reader, self._begin, self.window.theme, self.window
+        )
         self._dialog.open()
 
     def _begin(self, request: BeginRequest) -> None:
         self._begun = request.episode
-        self.model.ask(episode_operations.begin, request, done=self._episode_begun, failed=self._dialog.failed)
+        self.model.ask(
+            episode_operations.begin, request, done=self._episode_begun, failed=self._dialog.failed
+        )
 
     def _episode_begun(self, outcome: Outcome[tuple[str, ...]]) -> None:  # noqa: ARG002
         self._dialog.accept()
@@ -69,7 +72,8 @@ class LogDeeds(Doer):
         if feed is None or key is None or key not in feed.answers:
             return
         labels = {k: a.figures.label for k, a in feed.answers.items()}
-        dialog = CorrectDialog(self.model, feed.answers[key].record, labels, self.window.reader, self.window.theme,
-                               self.window)  # fmt: skip
+        dialog = CorrectDialog(
+            self.model, feed.answers[key].record, labels, self.window.reader, self.window.theme, self.window
+        )
         dialog.recorded.connect(self.strip.remember)
         dialog.open()

@@ -35,7 +35,9 @@ class ViewDeeds(Doer):
 
     def _of_page(self) -> Explanation | None:
         if self.pages.name == "episode":
-            return next((f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None)
+            return next(
+                (f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None
+            )
         item = self.pages.ward.lanes.selected_item
         if item is not None:
             return self.of_payload(item.payload)
@@ -44,7 +46,9 @@ class ViewDeeds(Doer):
         if answer is None:
             return None
         figures = answer.figures
-        return self.of_payload(next(iter((*figures.flags, *reversed(figures.responses), *reversed(figures.gases))), None))
+        return self.of_payload(
+            next(iter((*figures.flags, *reversed(figures.responses), *reversed(figures.gases))), None)
+        )
 
     def of_payload(self, payload: object) -> Explanation | None:
         """The explanation of a figure."""

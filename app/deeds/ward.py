@@ -70,8 +70,13 @@ class WardDeeds(Doer):
     def show_handover_text(self) -> None:
         """Gather this shift and show it."""
         self.pages.handover.say(self.tr("Gathering the shift..."))
-        self.model.ask(handover.prepare, self._request(), done=self._gathered, failed=self._not_gathered,
-                       subject="handover")  # fmt: skip
+        self.model.ask(
+            handover.prepare,
+            self._request(),
+            done=self._gathered,
+            failed=self._not_gathered,
+            subject="handover",
+        )
 
     def _request(self) -> handover.HandoverRequest:
         shift, session = self.window.shift(), self.model.session
@@ -80,7 +85,9 @@ class WardDeeds(Doer):
     def _gathered(self, outcome: Outcome[handover.Handover]) -> None:
         from app.sheet.content import sheet_content
 
-        self.pages.handover.show_content(sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person))
+        self.pages.handover.show_content(
+            sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person)
+        )
 
     def _not_gathered(self, failure: Failure) -> None:
         self.pages.handover.say(sentence(failure.message, self.window.reader))
@@ -92,10 +99,13 @@ class WardDeeds(Doer):
 
     def _print(self, outcome: Outcome[handover.Handover]) -> None:
         from app.sheet.content import sheet_content
-        from app.sheet.pdf import write_pdf
+        from app.sheet.printing import write_pdf
 
         try:
-            write_pdf(sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person), self._path)
+            write_pdf(
+                sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person),
+                self._path,
+            )
         except OSError as error:
             self.window.show_failure(failure_of(error))
             return

@@ -24,8 +24,15 @@ Ask = Callable[[BeginRequest], None]
 class NewEpisodeDialog(AskingDialog):
     """Asks for the facts of a new episode and hands a request to `ask`; `failed` shows a refusal."""
 
-    def __init__(self, policy: Policy, now: Instant, reader: Reader, ask: Ask, theme: Theme,
-                 parent: QWidget | None = None) -> None:  # fmt: skip
+    def __init__(
+        self,
+        policy: Policy,
+        now: Instant,
+        reader: Reader,
+        ask: Ask,
+        theme: Theme,
+        parent: QWidget | None = None,
+    ) -> None:
         super().__init__(self.tr("New episode"), self.tr("Begin"), theme, parent)
         self._policy, self._now, self._reader, self._ask = policy, now, reader, ask
         self.label, self.location, self.age = QLineEdit(), QLineEdit(), QLineEdit()
@@ -58,7 +65,9 @@ class NewEpisodeDialog(AskingDialog):
         risk = self.indication.currentData() in HYPERCAPNIC_RISK
         low, high = (o.risk_target_low, o.risk_target_high) if risk else (o.target_low, o.target_high)
         for field, limit in ((self.target_low, low), (self.target_high, high)):
-            field.setPlaceholderText(self.tr("{value:g} suggested ({source})").format(value=limit.value, source=limit.source))
+            field.setPlaceholderText(
+                self.tr("{value:g} suggested ({source})").format(value=limit.value, source=limit.source)
+            )
 
     def submit(self) -> None:
         label = self.label.text().strip()
@@ -66,11 +75,16 @@ class NewEpisodeDialog(AskingDialog):
             self.refuse(self.tr("Type a bed or a label."))
             return
         typed = {
-            "label": label, "location": self.location.text(), "age": self.age.text(),
-            "indication": self.indication.currentData(), "target_spo2_low": self.target_low.text(),
-            "target_spo2_high": self.target_high.text(), "ceiling_of_care": self.ceiling.currentData(),
-            "resuscitation": self.resuscitation.currentData(), "contact": self.contact.text(),
-        }  # fmt: skip
+            "label": label,
+            "location": self.location.text(),
+            "age": self.age.text(),
+            "indication": self.indication.currentData(),
+            "target_spo2_low": self.target_low.text(),
+            "target_spo2_high": self.target_high.text(),
+            "ceiling_of_care": self.ceiling.currentData(),
+            "resuscitation": self.resuscitation.currentData(),
+            "contact": self.contact.text(),
+        }
         facts = {key: text.strip() for key, text in typed.items() if text and text.strip()}
         self.go.setEnabled(False)
         self._ask(BeginRequest(key_of(label, self._now, self._reader.zone), facts, zone=self._reader.zone))

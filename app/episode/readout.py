@@ -52,14 +52,22 @@ class Readout(QFrame):
         """Say what stood at a moment; `pointed`: the crosshair is there, else it is now."""
         head = wall(at, zone) if pointed else self.tr("Now, {time}").format(time=wall(at, zone))
         stretch = step.payload if step is not None else None
-        settings = settings_line(stretch.settings) if isinstance(stretch, Stretch) else self.tr("no settings in force")
+        settings = (
+            settings_line(stretch.settings)
+            if isinstance(stretch, Stretch)
+            else self.tr("no settings in force")
+        )
         age = ""
         if isinstance(stretch, Stretch):
             age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))
         quiet = self._theme.colours.ink_quiet
-        self._settings.setText(f"<b>{escape(head)}</b> &nbsp; {escape(settings)} <span style='color:{quiet}'>{escape(age)}</span>")
+        self._settings.setText(
+            f"<b>{escape(head)}</b> &nbsp; {escape(settings)} <span style='color:{quiet}'>{escape(age)}</span>"
+        )
         parts = [self._value(r, at) for r in _once(readings)]
-        self._values.setText(" &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment")))
+        self._values.setText(
+            " &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment"))
+        )
         self._values.setAccessibleName(self.plain())
 
     def plain(self) -> str:

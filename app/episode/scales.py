@@ -13,14 +13,38 @@ from app.episode.traces import shown_as
 from app.panels import Panel
 
 USUAL: Final = {
-    "ph": (7.15, 7.45), "paco2": (30, 80), "pao2": (40, 100), "pf": (0, 400), "hco3": (15, 40),
-    "hco3_calculated": (15, 40), "sbe": (-10, 15), "be": (-10, 15), "lactate": (0, 4),
-    "rr": (0, 40), "rr_total": (0, 40), "hr": (40, 140), "spo2": (80, 100), "sbp": (60, 180), "dbp": (40, 120),
-    "gcs": (3, 15), "temp": (35, 40), "dyspnoea": (0, 10),
-    "ipap": (0, 30), "epap": (0, 30), "cpap": (0, 30), "pressure_support": (0, 30), "fio2": (0.2, 1.0),
-    "o2_flow": (0, 15), "rate_set": (0, 30), "ti": (0, 2),
-    "vte": (0, 800), "mv": (0, 20), "leak": (0, 60), "pip": (0, 30), "spont_percent": (0, 100),
-}  # fmt: skip
+    "ph": (7.15, 7.45),
+    "paco2": (30, 80),
+    "pao2": (40, 100),
+    "pf": (0, 400),
+    "hco3": (15, 40),
+    "hco3_calculated": (15, 40),
+    "sbe": (-10, 15),
+    "be": (-10, 15),
+    "lactate": (0, 4),
+    "rr": (0, 40),
+    "rr_total": (0, 40),
+    "hr": (40, 140),
+    "spo2": (80, 100),
+    "sbp": (60, 180),
+    "dbp": (40, 120),
+    "gcs": (3, 15),
+    "temp": (35, 40),
+    "dyspnoea": (0, 10),
+    "ipap": (0, 30),
+    "epap": (0, 30),
+    "cpap": (0, 30),
+    "pressure_support": (0, 30),
+    "fio2": (0.2, 1.0),
+    "o2_flow": (0, 15),
+    "rate_set": (0, 30),
+    "ti": (0, 2),
+    "vte": (0, 800),
+    "mv": (0, 20),
+    "leak": (0, 60),
+    "pip": (0, 30),
+    "spont_percent": (0, 100),
+}
 """Ranges at rest, in canonical units, so that two episodes look alike at first. Common practice, no source."""
 _STEPS: Final = (0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200, 500)
 

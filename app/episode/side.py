@@ -84,7 +84,10 @@ class _Facts:
     def groups(self) -> Iterator[tuple[str, Sequence[Fact]]]:
         """(heading, facts) from top to bottom; a group without facts is left out, flags and due never are."""
         yield translate("side", "Now"), tuple(self._now())
-        yield translate("side", "Flags"), tuple(self._flags()) or (self._quiet(translate("side", "No open flag")),)
+        yield (
+            translate("side", "Flags"),
+            tuple(self._flags()) or (self._quiet(translate("side", "No open flag")),),
+        )
         yield translate("side", "Due"), tuple(self._due()) or (self._quiet(translate("side", "Nothing due")),)
         levers = tuple(self._levers())
         if levers:
@@ -106,8 +109,13 @@ class _Facts:
         else:
             state = state_of(gas.state)
             age = since(gas.at, f.as_of)
-            yield Fact(self.theme, f"{state_word(state)}", (gas_words(gas, self.reader.gas_unit), f"{clock(gas.at, zone)}, {age}"),
-                       sign=Sign(self.theme, state), explanation=self.explainer.gas(gas))  # fmt: skip
+            yield Fact(
+                self.theme,
+                f"{state_word(state)}",
+                (gas_words(gas, self.reader.gas_unit), f"{clock(gas.at, zone)}, {age}"),
+                sign=Sign(self.theme, state),
+                explanation=self.explainer.gas(gas),
+            )
         response = self._telling()
         if response is not None:
             yield self._verdict(response)
@@ -121,16 +129,24 @@ class _Facts:
 
     def _verdict(self, response: ResponseFigure) -> Fact:
         verdict = verdict_of(response.headline)
-        lines = [translate("side", "after {anchor} at {time}").format(
-            anchor=anchor_name(response), time=clock(response.anchor_at, self.reader.zone))]  # fmt: skip
+        lines = [
+            translate("side", "after {anchor} at {time}").format(
+                anchor=anchor_name(response), time=clock(response.anchor_at, self.reader.zone)
+            )
+        ]
         latest = next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)
         if latest is not None and latest.since_start.verdict is not None:
             against = verdict_word(verdict_of(latest.since_start.verdict))
             text = translate("side", "since the start: {verdict}").format(verdict=against)
             lines.append(text + (translate("side", ", gain lost") if latest.since_start.gain_lost else ""))
         lines += [sentence(m, self.reader) for m in response.why[:1]]
-        return Fact(self.theme, verdict_word(verdict), lines, sign=Sign(self.theme, verdict),
-                    explanation=self.explainer.response(response))  # fmt: skip
+        return Fact(
+            self.theme,
+            verdict_word(verdict),
+            lines,
+            sign=Sign(self.theme, verdict),
+            explanation=self.explainer.response(response),
+        )
 
     def _support(self) -> str:
         s = self.f.support
@@ -144,28 +160,47 @@ class _Facts:
     def _mask_time(self) -> Iterator[str]:
         s = self.f.support
         if s.pressure_support_cmH2O is not None and s.ipap_cmH2O is not None:
-            yield translate("side", "pressure support {ps} cmH2O").format(ps=trimmed(s.pressure_support_cmH2O))
+            yield translate("side", "pressure support {ps} cmH2O").format(
+                ps=trimmed(s.pressure_support_cmH2O)
+            )
         if s.break_since is not None:
-            yield translate("side", "off the mask since {time}").format(time=clock(s.break_since, self.reader.zone))
+            yield translate("side", "off the mask since {time}").format(
+                time=clock(s.break_since, self.reader.zone)
+            )
         if s.hours_on_mask is not None:
             text = translate("side", "{hours} on the mask").format(hours=hours(s.hours_on_mask))
             if s.hours_on_mask_last_24h is not None and s.hours_on_mask > s.hours_on_mask_last_24h + 0.05:
-                text += translate("side", ", {hours} in the last 24 h").format(hours=hours(s.hours_on_mask_last_24h))
+                text += translate("side", ", {hours} in the last 24 h").format(
+                    hours=hours(s.hours_on_mask_last_24h)
+                )
             yield text
 
     # flags
 
     def _flags(self) -> Iterator[Fact]:
         for flag in open_flags(self.f):
-            under = [g for g in self.f.flags if g.group == flag.group and g is not flag and g.state in ("raised", "seen")]
-            folded = [f"{marker_name(g.marker, self.reader)} ({tier_word(Tier(g.tier))}). {self._evidence(g)}" for g in under]
+            under = [
+                g
+                for g in self.f.flags
+                if g.group == flag.group and g is not flag and g.state in ("raised", "seen")
+            ]
+            folded = [
+                f"{marker_name(g.marker, self.reader)} ({tier_word(Tier(g.tier))}). {self._evidence(g)}"
+                for g in under
+            ]
             word = translate("side", "{count} more of this kind").format(count=len(under))
             lines = [self._evidence(flag), self._source(flag)]
             if flag.seen_by:
                 lines.append(translate("side", "seen by {who}").format(who=flag.seen_by))
-            yield Fact(self.theme, f"{marker_name(flag.marker, self.reader)}", [x for x in lines if x],
-                       sign=Sign(self.theme, Tier(flag.tier), quiet=flag.state == "seen"),
-                       explanation=self.explainer.flag(flag), folded=folded, fold_word=word)  # fmt: skip
+            yield Fact(
+                self.theme,
+                f"{marker_name(flag.marker, self.reader)}",
+                [x for x in lines if x],
+                sign=Sign(self.theme, Tier(flag.tier), quiet=flag.state == "seen"),
+                explanation=self.explainer.flag(flag),
+                folded=folded,
+                fold_word=word,
+            )
 
     def _evidence(self, flag: FlagFigure) -> str:
         return " ".join(sentence(e, self.reader) for e in flag.evidence)
@@ -185,20 +220,37 @@ class _Facts:
             elif d.state == "awaiting result":
                 title = translate("side", "{what}: awaiting result").format(what=name)
             else:
-                title = translate("side", "{what} by {time}").format(what=name, time=clock(d.due_until, self.reader.zone))
-            yield Fact(self.theme, title, (sentence(d.because, self.reader),), explanation=self.explainer.due(d),
-                       quiet=d.state == "open")  # fmt: skip
+                title = translate("side", "{what} by {time}").format(
+                    what=name, time=clock(d.due_until, self.reader.zone)
+                )
+            yield Fact(
+                self.theme,
+                title,
+                (sentence(d.because, self.reader),),
+                explanation=self.explainer.due(d),
+                quiet=d.state == "open",
+            )
 
     def _levers(self) -> Iterator[Fact]:
         for lever in (x for x in self.f.levers if x.can_act):
             lines = [sentence(m, self.reader) for m in (*lever.why, *lever.limits)]
-            yield Fact(self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever))
+            yield Fact(
+                self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever)
+            )
         idle = [x for x in self.f.levers if not x.can_act]
         if idle:
-            folded = [f"{lever_name(x.key, self.reader)}: {' '.join(sentence(m, self.reader) for m in x.why)}" for x in idle]
+            folded = [
+                f"{lever_name(x.key, self.reader)}: {' '.join(sentence(m, self.reader) for m in x.why)}"
+                for x in idle
+            ]
             word = translate("side", "Enter tells why")
-            yield Fact(self.theme, translate("side", "{count} that cannot act now").format(count=len(idle)), folded=folded,
-                       fold_word=word, quiet=True)  # fmt: skip
+            yield Fact(
+                self.theme,
+                translate("side", "{count} that cannot act now").format(count=len(idle)),
+                folded=folded,
+                fold_word=word,
+                quiet=True,
+            )
 
     # scores
 
@@ -206,19 +258,35 @@ class _Facts:
         for key, score in self.f.scores.items():
             if score.enabled:
                 name = SCORE_NAMES.get(key, key)
-                yield Fact(self.theme, f"{name}: {self._points(score)}", tuple(self._score_lines(score)),
-                           explanation=self.explainer.score(name, score), quiet=True)  # fmt: skip
+                yield Fact(
+                    self.theme,
+                    f"{name}: {self._points(score)}",
+                    tuple(self._score_lines(score)),
+                    explanation=self.explainer.score(name, score),
+                    quiet=True,
+                )
         for name, ratio, decimals in (("P/F", self.f.pf, 0), ("S/F", self.f.sf, 0), ("ROX", self.f.rox, 1)):
             if ratio.latest is not None and ratio.at is not None:
-                value = gas_pressure(ratio.latest, self.reader.gas_unit) if name == "P/F" else fixed(ratio.latest, decimals)
-                yield Fact(self.theme, f"{name}: {value}", (f"{clock(ratio.at, self.reader.zone)}, {since(ratio.at, self.f.as_of)}",),
-                           explanation=Explanation(name), quiet=True)  # fmt: skip
+                value = (
+                    gas_pressure(ratio.latest, self.reader.gas_unit)
+                    if name == "P/F"
+                    else fixed(ratio.latest, decimals)
+                )
+                yield Fact(
+                    self.theme,
+                    f"{name}: {value}",
+                    (f"{clock(ratio.at, self.reader.zone)}, {since(ratio.at, self.f.as_of)}",),
+                    explanation=Explanation(name),
+                    quiet=True,
+                )
 
     def _points(self, score: ScoreFigure) -> str:
         if score.points is not None:
             return trimmed(score.points)
         if score.lowest is not None and score.highest is not None:
-            return translate("side", "between {low} and {high}").format(low=trimmed(score.lowest), high=trimmed(score.highest))
+            return translate("side", "between {low} and {high}").format(
+                low=trimmed(score.lowest), high=trimmed(score.highest)
+            )
         return translate("side", "not known")
 
     def _score_lines(self, score: ScoreFigure) -> Iterator[str]:
@@ -230,5 +298,3 @@ class _Facts:
         if score.at is not None:
             yield f"{clock(score.at, self.reader.zone)}, {since(score.at, self.f.as_of)}"
         yield from (sentence(m, self.reader) for m in score.reasons.values())
-
-

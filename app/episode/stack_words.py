@@ -8,9 +8,9 @@ from zoneinfo import ZoneInfo
 import numpy as np
 
 from app.chart.shapes import Area, Band, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick
-from app.episode_shown import EpisodeOnScreen
 from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
+from app.episode_shown import EpisodeOnScreen
 from app.formats import clock
 from app.panels import Panel
 from app.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
@@ -29,20 +29,30 @@ def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
     """Everything of the episode, ready to draw."""
     start = _start(on)
     until = on.course.until
-    maker = TraceMaker(on.record, on.figures, on.course, on.gas_unit,
-                       on.policy.leak.doubt_tidal_volume_above_L_per_min.value)  # fmt: skip
-    latest = max(until, max((r.window_to for r in on.figures.responses if r.headline == "not yet known"), default=0))
+    maker = TraceMaker(
+        on.record, on.figures, on.course, on.gas_unit, on.policy.leak.doubt_tidal_volume_above_L_per_min.value
+    )
+    latest = max(
+        until, max((r.window_to for r in on.figures.responses if r.headline == "not yet known"), default=0)
+    )
     end = min(latest, until + 3 * HOUR) if on.course.support.end is None else until
     end = max(end, start + 30 * MINUTE)
     return StackSpec(
-        zone=ZoneInfo(on.zone), start=start, end=end,
+        zone=ZoneInfo(on.zone),
+        start=start,
+        end=end,
         panels=tuple(_panel(on, p, maker) for p in on.panels.panels),
-        ribbon=_ribbon(on), events=tuple(_events(on)), now=now if start <= now <= end else None,
-        now_word=translate("stack", "now"), window=(max(start, end - 24 * HOUR), end) if end - start > LONG else None,
-        reduced_word=translate("stack", "Lowest and highest value of each pixel are drawn. Zoom in for each value."),
+        ribbon=_ribbon(on),
+        events=tuple(_events(on)),
+        now=now if start <= now <= end else None,
+        now_word=translate("stack", "now"),
+        window=(max(start, end - 24 * HOUR), end) if end - start > LONG else None,
+        reduced_word=translate(
+            "stack", "Lowest and highest value of each pixel are drawn. Zoom in for each value."
+        ),
         name=translate("stack", "Panels of {label} on one clock").format(label=on.figures.label),
         summary=summary_of(on),
-    )  # fmt: skip
+    )
 
 
 def _start(on: EpisodeOnScreen) -> Instant:
@@ -55,19 +65,31 @@ def _panel(on: EpisodeOnScreen, panel: Panel, maker: TraceMaker) -> PanelSpec:
     traces = tuple(t for n, c in enumerate(panel.channels) for t in maker.traces(c, n))
     scales = scales_of(panel, traces, on.gas_unit)
     gas = bool({"ph", "paco2"} & set(panel.channels))
-    return PanelSpec(panel.key, panel.title, traces, scales, tuple(_bands(on, panel, scales)) if panel.bands else (),
-                     tuple(_areas(on, panel)), tuple(_brackets(on)) if gas else (), panel.height)  # fmt: skip
+    return PanelSpec(
+        panel.key,
+        panel.title,
+        traces,
+        scales,
+        tuple(_bands(on, panel)) if panel.bands else (),
+        tuple(_areas(on, panel)),
+        tuple(_brackets(on)) if gas else (),
+        panel.height,
+    )
 
 
-def _bands(on: EpisodeOnScreen, panel: Panel, scales: tuple[object, ...]) -> Iterator[Band]:
+def _bands(on: EpisodeOnScreen, panel: Panel) -> Iterator[Band]:
     low, high = on.figures.profile.get("target_spo2_low"), on.figures.profile.get("target_spo2_high")
     if "spo2" in panel.channels and isinstance(low, float) and isinstance(high, float):
         word = translate("stack", "target {low:g} to {high:g} %").format(low=low, high=high)
         yield Band(low, high, "%", word)
     if "ph" in panel.channels:
         state = on.policy.state
-        yield Band(state.acidotic_below_ph.value, state.alkalotic_above_ph.value, "pH",
-                   f"{state.acidotic_below_ph.value:.2f} - {state.alkalotic_above_ph.value:.2f}")  # fmt: skip
+        yield Band(
+            state.acidotic_below_ph.value,
+            state.alkalotic_above_ph.value,
+            "pH",
+            f"{state.acidotic_below_ph.value:.2f} - {state.alkalotic_above_ph.value:.2f}",
+        )
     limit = on.figures.leak.limit_L_per_min
     if "leak" in panel.channels and limit is not None:
         yield Band(0.0, limit, "L/min", translate("stack", "within {limit:.0f}").format(limit=limit))
@@ -78,20 +100,35 @@ def _areas(on: EpisodeOnScreen, panel: Panel) -> Iterator[Area]:
     if expected is None or not expected.t or "paco2" not in panel.channels:
         return
     shown = shown_as("paco2", on.gas_unit)
-    yield Area(np.array(expected.t, np.int64), np.array(expected.low_mmHg) * shown.factor,
-               np.array(expected.high_mmHg) * shown.factor, shown.unit, translate("stack", "expected"))  # fmt: skip
+    yield Area(
+        np.array(expected.t, np.int64),
+        np.array(expected.low_mmHg) * shown.factor,
+        np.array(expected.high_mmHg) * shown.factor,
+        shown.unit,
+        translate("stack", "expected"),
+    )
 
 
 def _brackets(on: EpisodeOnScreen) -> Iterator[Bracket]:
     for r in on.figures.responses:
-        still_open = r.headline == "not yet known" and r.superseded_at is None and r.window_to > on.course.until
+        still_open = (
+            r.headline == "not yet known" and r.superseded_at is None and r.window_to > on.course.until
+        )
         if r.superseded_at is not None and r.superseded_at <= r.window_from:
             continue  # its window never opened: a later change took its place
         end = r.window_to if r.superseded_at is None else min(r.window_to, r.superseded_at)
         verdict = verdict_of(r.headline)
-        yield Bracket(r.anchor_at, r.window_from, end, verdict, verdict_word(verdict),
-                      None if r.state is None else state_of(r.state),
-                      "" if r.state is None else state_word(state_of(r.state)), still_open, r)  # fmt: skip
+        yield Bracket(
+            r.anchor_at,
+            r.window_from,
+            end,
+            verdict,
+            verdict_word(verdict),
+            None if r.state is None else state_of(r.state),
+            "" if r.state is None else state_word(state_of(r.state)),
+            still_open,
+            r,
+        )
 
 
 def _ribbon(on: EpisodeOnScreen) -> RibbonSpec:
@@ -104,14 +141,33 @@ def _ribbon(on: EpisodeOnScreen) -> RibbonSpec:
         v = s.settings
         epap = v.low_pressure if known(v.low_pressure) else None
         ipap = v.ipap if v.is_bilevel and known(v.ipap) else None
-        steps.append(RibbonStep(begin, s.end, epap if not v.is_off else None, ipap if epap is not None else None,
-                                v.mode or "", "" if v.is_off else _fio2(v), known(v.fio2), s.doubtful,
-                                _without_pressure(v.mode, v.is_off), s))  # fmt: skip
-    breaks = tuple(Span(b.start, b.end or on.course.until, translate("stack", "off")) for b in on.course.breaks)
+        steps.append(
+            RibbonStep(
+                begin,
+                s.end,
+                epap if not v.is_off else None,
+                ipap if epap is not None else None,
+                v.mode or "",
+                "" if v.is_off else _fio2(v),
+                known(v.fio2),
+                s.doubtful,
+                _without_pressure(v.mode, v.is_off),
+                s,
+            )
+        )
+    breaks = tuple(
+        Span(b.start, b.end or on.course.until, translate("stack", "off")) for b in on.course.breaks
+    )
     ticks = tuple(Tick(s.start, change_word(s), s.doubtful, s) for s in on.course.stretches[1:])
     top = max((s.ipap or s.epap or 0.0 for s in steps), default=0.0)
-    return RibbonSpec(translate("stack", "Pressure, EPAP to IPAP"), "cmH2O", tuple(steps), breaks, ticks,
-                      max(RIBBON_HIGH, 5 * (int(top) // 5 + 1.0)))  # fmt: skip
+    return RibbonSpec(
+        translate("stack", "Pressure, EPAP to IPAP"),
+        "cmH2O",
+        tuple(steps),
+        breaks,
+        ticks,
+        max(RIBBON_HIGH, 5 * (int(top) // 5 + 1.0)),
+    )
 
 
 def _fio2(settings: object) -> str:
@@ -137,8 +193,11 @@ def _events(on: EpisodeOnScreen) -> Iterator[Tick]:
 def summary_of(on: EpisodeOnScreen) -> str:
     """The chart in words: span, changes with their verdicts, the newest gas."""
     f, zone = on.figures, on.zone
-    parts = [translate("stack", "{label}, support from {start}.").format(
-        label=f.label, start=clock(on.course.support.start, zone) if on.course.support.start else "?")]  # fmt: skip
+    parts = [
+        translate("stack", "{label}, support from {start}.").format(
+            label=f.label, start=clock(on.course.support.start, zone) if on.course.support.start else "?"
+        )
+    ]
     for s in on.course.stretches[1:]:
         parts.append(f"{clock(s.start, zone)} {change_sentence(s.changed, s.settings)}.")
     parts += [_response_words(r, zone) for r in f.responses]

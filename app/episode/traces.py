@@ -20,8 +20,15 @@ from core.record.units import MMHG_PER_KPA
 GAS_PRESSURES: Final = ("paco2", "pao2", "pf")
 _DECIMALS: Final = {"pf": 0, "pressure_support": 1, "hco3_calculated": 1, "sbe": 1}
 _UNITS: Final = {"pf": "mmHg", "pressure_support": "cmH2O", "hco3_calculated": "mmol/L", "sbe": "mmol/L"}
-_NAMES: Final = {"ph": "pH", "paco2": "PaCO2", "pao2": "PaO2", "rr": "Counted", "rr_total": "Device",
-                 "vte": "Tidal vol.", "mv": "Minute vol."}
+_NAMES: Final = {
+    "ph": "pH",
+    "paco2": "PaCO2",
+    "pao2": "PaO2",
+    "rr": "Counted",
+    "rr_total": "Device",
+    "vte": "Tidal vol.",
+    "mv": "Minute vol.",
+}
 _FROM_GAS: Final = {"pf": "pf_mmHg", "hco3_calculated": "hco3_calculated_mmol_L", "sbe": "sbe_mmol_L"}
 LEAST_GAP: Final = 5 * MINUTE
 
@@ -71,11 +78,33 @@ class TraceMaker:
             return tuple(self._gas_values(channel, ink))
         return tuple(self._measured(channel, ink))
 
-    def _trace(self, channel: str, key: str, name: str, t: np.ndarray, v: np.ndarray, drawn: Drawn, ink: int,
-               looks: np.ndarray | None = None, gap: int | None = None, doubts: tuple[Span, ...] = ()) -> Trace:  # fmt: skip
+    def _trace(
+        self,
+        channel: str,
+        key: str,
+        name: str,
+        t: np.ndarray,
+        v: np.ndarray,
+        drawn: Drawn,
+        ink: int,
+        looks: np.ndarray | None = None,
+        gap: int | None = None,
+        doubts: tuple[Span, ...] = (),
+    ) -> Trace:
         as_shown = shown_as(channel, self.gas_unit)
-        return Trace(key, name, as_shown.unit, t.astype(np.int64), v * as_shown.factor, drawn, as_shown.decimals,
-                     gap, looks, doubts, ink)  # fmt: skip
+        return Trace(
+            key,
+            name,
+            as_shown.unit,
+            t.astype(np.int64),
+            v * as_shown.factor,
+            drawn,
+            as_shown.decimals,
+            gap,
+            looks,
+            doubts,
+            ink,
+        )
 
     def _measured(self, channel: str, ink: int) -> Iterator[Trace]:
         series = self.record.number(channel).until(self.course.until)
@@ -83,23 +112,47 @@ class TraceMaker:
         machine, spots = series.machine, series.spots
         if len(machine):
             gap = max(LEAST_GAP, 3 * int(np.median(np.diff(machine.t)))) if len(machine) > 1 else LEAST_GAP
-            yield self._trace(channel, channel, name, machine.t, machine.v, Drawn.LINE, ink, None, gap,
-                              self._doubts(channel))  # fmt: skip
+            yield self._trace(
+                channel,
+                channel,
+                name,
+                machine.t,
+                machine.v,
+                Drawn.LINE,
+                ink,
+                None,
+                gap,
+                self._doubts(channel),
+            )
         if len(spots):
             told = translate("traces", "{name}, spot").format(name=name) if len(machine) else name
-            yield self._trace(channel, f"{channel}.spots", told, spots.t, spots.v, Drawn.SPOTS, ink, self._looks(spots))
+            yield self._trace(
+                channel, f"{channel}.spots", told, spots.t, spots.v, Drawn.SPOTS, ink, self._looks(spots)
+            )
 
     def _gas_values(self, channel: str, ink: int) -> Iterator[Trace]:
         series = self.record.number(channel).until(self.course.until)
         venous = {g.at for g in self.figures.gases if g.site == "venous"}
-        is_venous = np.isin(series.t, np.array(sorted(venous), np.int64)) if venous else np.zeros(len(series), bool)
+        is_venous = (
+            np.isin(series.t, np.array(sorted(venous), np.int64)) if venous else np.zeros(len(series), bool)
+        )
         usual, other = series.cut(~is_venous), series.cut(is_venous)
         if len(usual):
-            yield self._trace(channel, channel, trace_name(channel), usual.t, usual.v, Drawn.SPOTS_JOINED, ink,
-                              self._looks(usual))  # fmt: skip
+            yield self._trace(
+                channel,
+                channel,
+                trace_name(channel),
+                usual.t,
+                usual.v,
+                Drawn.SPOTS_JOINED,
+                ink,
+                self._looks(usual),
+            )
         if len(other):
             name = translate("traces", "{name}, venous").format(name=trace_name(channel))
-            yield self._trace(channel, f"{channel}.venous", name, other.t, other.v, Drawn.SPOTS, ink, self._looks(other))
+            yield self._trace(
+                channel, f"{channel}.venous", name, other.t, other.v, Drawn.SPOTS, ink, self._looks(other)
+            )
 
     def _from_gases(self, channel: str, ink: int) -> Iterator[Trace]:
         gases = [g for g in self.figures.gases if getattr(g, _FROM_GAS[channel]) is not None]
@@ -112,15 +165,23 @@ class TraceMaker:
     def _setting(self, channel: str, ink: int) -> Iterator[Trace]:
         steps = self.course.in_force.steps(channel) if channel != "rise" else None
         if steps is not None and steps.t.size:
-            yield self._trace(channel, channel, trace_name(channel), *self._held(steps.t, steps.v), Drawn.STEPS, ink)
+            yield self._trace(
+                channel, channel, trace_name(channel), *self._held(steps.t, steps.v), Drawn.STEPS, ink
+            )
 
     def _support(self, ink: int) -> Iterator[Trace]:
         stretches = self.course.stretches
         if stretches:
             t = np.array([s.start for s in stretches], np.int64)
             v = np.array([s.settings.pressure_support for s in stretches], np.float64)
-            yield self._trace("pressure_support", "pressure_support", trace_name("pressure_support"),
-                              *self._held(t, v), Drawn.STEPS, ink)  # fmt: skip
+            yield self._trace(
+                "pressure_support",
+                "pressure_support",
+                trace_name("pressure_support"),
+                *self._held(t, v),
+                Drawn.STEPS,
+                ink,
+            )
 
     def _held(self, t: np.ndarray, v: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
         """A step holds until the end of support, so it is written there once more."""
@@ -160,7 +221,10 @@ def runs_above(t: np.ndarray, v: np.ndarray, limit: float) -> list[tuple[Instant
     over = np.concatenate(([False], v > limit, [False]))
     edges = np.flatnonzero(over[1:] != over[:-1])
     ends = np.append(t[1:], t[-1] + MINUTE)
-    return [(int(t[a]), int(min(ends[b - 1], t[b - 1] + LEAST_GAP))) for a, b in zip(edges[::2], edges[1::2], strict=True)]
+    return [
+        (int(t[a]), int(min(ends[b - 1], t[b - 1] + LEAST_GAP)))
+        for a, b in zip(edges[::2], edges[1::2], strict=True)
+    ]
 
 
 def trace_name(channel: str) -> str:

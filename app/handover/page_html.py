@@ -30,8 +30,10 @@ class _Writer:
 
     def heading(self, text: str, size: int, anchor: str = "") -> str:
         name = f'<a name="{escape(anchor)}"></a>' if anchor else ""
-        return (f'{name}<p style="font-size:{self.theme.px(size)}px; font-weight:600; margin-top:{self.theme.px(14)}px; '
-                f'margin-bottom:{self.theme.px(4)}px">{escape(text)}</p>')  # fmt: skip
+        return (
+            f'{name}<p style="font-size:{self.theme.px(size)}px; font-weight:600; margin-top:{self.theme.px(14)}px; '
+            f'margin-bottom:{self.theme.px(4)}px">{escape(text)}</p>'
+        )
 
     def text(self, text: str) -> str:
         return f'<p style="margin:{self.theme.px(2)}px 0">{escape(text)}</p>'
@@ -42,19 +44,33 @@ class _Writer:
     def ward(self, content: SheetContent) -> Iterator[str]:
         page = content.ward
         yield self.heading(f"{page.shift}", self.theme.type.title)
-        yield self.heading(translate("handover", "See first: {who}").format(who=page.see_first), self.theme.type.emphasis)
-        yield self.table((translate("handover", "Who"), translate("handover", "State"), translate("handover", "Support and response"),
-                          translate("handover", "Open flags"), translate("handover", "Due")),
-                         (self.ward_row(r) for r in page.rows), (15, 20, 33, 19, 13))  # fmt: skip
+        yield self.heading(
+            translate("handover", "See first: {who}").format(who=page.see_first), self.theme.type.emphasis
+        )
+        yield self.table(
+            (
+                translate("handover", "Who"),
+                translate("handover", "State"),
+                translate("handover", "Support and response"),
+                translate("handover", "Open flags"),
+                translate("handover", "Due"),
+            ),
+            (self.ward_row(r) for r in page.rows),
+            (15, 20, 33, 19, 13),
+        )
         for line in page.missing:
             yield self.quiet(line)
 
     def ward_row(self, r: WardRow) -> tuple[str, ...]:
         quiet = f'<span style="color:{self.c.ink_quiet}">'
-        who = f'<a href="#{escape(r.label)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a><br>{quiet}{escape(r.who)}</span>'
+        link = f'<a href="#{escape(r.label)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a>'
+        who = f"{link}<br>{quiet}{escape(r.who)}</span>"
         change = f"<br>{escape(r.change_of_state)}" if r.change_of_state else ""
-        flags = "<br>".join(escape(f) for f in r.flags) or f'{quiet}{escape(translate("handover", "none"))}</span>'
-        due = escape(r.due) or f'{quiet}{escape(translate("handover", "nothing"))}</span>'
+        flags = (
+            "<br>".join(escape(f) for f in r.flags)
+            or f"{quiet}{escape(translate('handover', 'none'))}</span>"
+        )
+        due = escape(r.due) or f"{quiet}{escape(translate('handover', 'nothing'))}</span>"
         support = f"{escape(r.support)}<br>{quiet}{escape(r.response)}</span>"
         return who, escape(r.state) + change, support, flags, due
 
@@ -62,9 +78,13 @@ class _Writer:
         """Cells are rich text already; widths in per cent."""
         pad, line = self.theme.px(5), self.c.line
         quiet = f"color:{self.c.ink_quiet}; padding:{pad}px"
-        head = "".join(f'<td width="{w}%" style="{quiet}">{escape(h)}</td>' for h, w in zip(heads, widths, strict=True))
+        head = "".join(
+            f'<td width="{w}%" style="{quiet}">{escape(h)}</td>' for h, w in zip(heads, widths, strict=True)
+        )
         cell = f'style="padding:{pad}px; border-top:1px solid {line}"'
-        body = "".join("<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows)
+        body = "".join(
+            "<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows
+        )
         return f'<table width="100%" cellspacing="0" style="border-collapse:collapse"><tr>{head}</tr>{body}</table>'
 
     def episode(self, page: EpisodePage) -> Iterator[str]:
@@ -73,7 +93,14 @@ class _Writer:
         yield self.quiet(page.subtitle)
         yield self.text(page.standing)
         yield self.text(page.settings)
-        yield self.table(("", ""), ((f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v)) for k, v in page.facts), (22, 78))
+        yield self.table(
+            ("", ""),
+            (
+                (f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v))
+                for k, v in page.facts
+            ),
+            (22, 78),
+        )
         if page.flags:
             yield self.heading(translate("handover", "Flags"), self.theme.type.emphasis)
             yield from (self.flag(f) for f in page.flags)
@@ -86,19 +113,32 @@ class _Writer:
         yield from (self.text(translate("handover", "Told: {who}").format(who=t)) for t in page.told)
         yield self.text(translate("handover", "Plan: {plan}").format(plan=page.plan))
         yield self.text(translate("handover", "Jobs: {jobs}").format(jobs=page.jobs))
-        yield self.text(translate("handover", "Remark: {remark}").format(
-            remark=page.remark or translate("handover", "none yet. Type 'handover remark ...' on the log strip.")))  # fmt: skip
+        yield self.text(
+            translate("handover", "Remark: {remark}").format(
+                remark=page.remark
+                or translate("handover", "none yet. Type 'handover remark ...' on the log strip.")
+            )
+        )
         yield from (self.quiet(line) for line in page.to_check)
 
     def flag(self, f: FlagLine) -> str:
         word = tier_word(Tier(f.tier)).upper()
         weight = 600 if f.is_open else 400
-        return (f'<p style="margin:{self.theme.px(3)}px 0"><span style="font-weight:{weight}">{escape(word)}: {escape(f.head)}</span><br>'
-                f'{escape(f.evidence)} <span style="color:{self.c.ink_quiet}">{escape(f.source)}</span></p>')  # fmt: skip
+        return (
+            f'<p style="margin:{self.theme.px(3)}px 0">'
+            f'<span style="font-weight:{weight}">{escape(word)}: {escape(f.head)}</span><br>'
+            f'{escape(f.evidence)} <span style="color:{self.c.ink_quiet}">{escape(f.source)}</span></p>'
+        )
 
     def changes(self, lines: tuple[ChangeLine, ...]) -> Iterator[str]:
         if not lines:
             yield self.text(translate("handover", "No change of settings this shift."))
             return
-        heads = (translate("handover", "When"), translate("handover", "What"), translate("handover", "What it did"))
-        yield self.table(heads, ((escape(x.at), escape(x.what), escape(x.response)) for x in lines), (15, 25, 60))
+        heads = (
+            translate("handover", "When"),
+            translate("handover", "What"),
+            translate("handover", "What it did"),
+        )
+        yield self.table(
+            heads, ((escape(x.at), escape(x.what), escape(x.response)) for x in lines), (15, 25, 60)
+        )

@@ -5,14 +5,32 @@ from __future__ import annotations
 from core.record.channels import CHANNELS, MODES, Group, Kind
 from core.record.log_line import words_of_channels
 
-_FIRST = ("ipap", "epap", "fio2", "rr", "spo2", "ph", "paco2", "pao2", "gas sent", "mask off", "mask on", "note")
+_FIRST = (
+    "ipap",
+    "epap",
+    "fio2",
+    "rr",
+    "spo2",
+    "ph",
+    "paco2",
+    "pao2",
+    "gas sent",
+    "mask off",
+    "mask on",
+    "note",
+)
 """What a night types most stands first."""
 
 
 def words() -> tuple[str, ...]:
     """Every word offered: the common ones, then settings, vitals, gas, device, events, profile."""
     order = (Group.SETTING, Group.VITAL, Group.GAS, Group.DEVICE, Group.EVENT, Group.PROFILE)
-    rest = [c.key.replace("_", " ") if c.kind is Kind.MARK else c.key for g in order for c in CHANNELS.values() if c.group is g]
+    rest = [
+        c.key.replace("_", " ") if c.kind is Kind.MARK else c.key
+        for g in order
+        for c in CHANNELS.values()
+        if c.group is g
+    ]
     return tuple(dict.fromkeys((*_FIRST, *rest, *(m.casefold() for m in MODES))))
 
 
@@ -47,7 +65,7 @@ def completed(text: str, cursor: int, word: str) -> tuple[str, int]:
     >>> completed("ipa", 3, "ipap")
     ('ipap ', 5)
     """
-    start, token = token_at(text, cursor)
+    start, _ = token_at(text, cursor)
     tail = text[cursor:].lstrip()
     made = f"{text[:start]}{word} {tail}"
     return made, start + len(word) + 1

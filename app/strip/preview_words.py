@@ -44,7 +44,9 @@ def preview_words(preview: Preview, record: Episode | None, now: Instant, reader
     elif _has_support(line.support_before, line.support_after):
         effects.append(_support_words(line.support_before, line.support_after))
     return PreviewWords(
-        translate("strip", "{label}, {when}").format(label=preview.label, when=_when(line.at, now, reader.zone)),
+        translate("strip", "{label}, {when}").format(
+            label=preview.label, when=_when(line.at, now, reader.zone)
+        ),
         tuple(reading_words(r, reader) for r in line.readings),
         tuple(effects),
         tuple(sentence(m, reader) for m in preview.questions),
@@ -57,13 +59,21 @@ def reading_words(reading: Reading, reader: Reader) -> str:
     if reading.value is None:
         return name
     if isinstance(reading.value, str):
-        return f"{name}: {reading.value}" if reading.channel.group is not Group.SETTING else f"{name} {reading.value}"
+        return (
+            f"{name}: {reading.value}"
+            if reading.channel.group is not Group.SETTING
+            else f"{name} {reading.value}"
+        )
     if reading.channel.key in _GAS_PRESSURES and reading.raw_unit in ("mmHg", "kPa"):
         raw = reading.raw.replace(",", ".")
         other = "kPa" if reading.raw_unit == "mmHg" else "mmHg"
         return f"{name} {raw} {reading.raw_unit} ({quantity(reading.channel.key, reading.value, other)})"
     text = quantity(reading.channel.key, reading.value, reader.gas_unit)
-    if reading.channel.group is Group.GAS and reading.decimals is not None and reading.raw_unit == reading.channel.unit:
+    if (
+        reading.channel.group is Group.GAS
+        and reading.decimals is not None
+        and reading.raw_unit == reading.channel.unit
+    ):
         text = f"{reading.raw.replace(',', '.')} {text.partition(' ')[2]}".strip()
     return f"{name} {text}"
 
@@ -80,8 +90,9 @@ def _effects(record: Episode, at: Instant, readings: tuple[Reading, ...], reader
     after = with_readings(before, readings)
     told = effect_of_change(before, after, own_rate(record, at))
     words = [sentence(m, reader) for m in told]
-    if not any(m.key.startswith("effect.pressure_support") or "support" in m.key for m in told) \
-            and _has_support(before.pressure_support, after.pressure_support):  # fmt: skip
+    if not any(
+        m.key.startswith("effect.pressure_support") or "support" in m.key for m in told
+    ) and _has_support(before.pressure_support, after.pressure_support):
         words.insert(0, _support_words(before.pressure_support, after.pressure_support))
     return words
 
@@ -114,4 +125,5 @@ def _support_words(before: float, after: float) -> str:
     if isnan(before):
         return translate("strip", "Pressure support {after} cmH2O.").format(after=trimmed(after))
     return translate("strip", "Pressure support {before} to {after} cmH2O.").format(
-        before=trimmed(before), after=trimmed(after))  # fmt: skip
+        before=trimmed(before), after=trimmed(after)
+    )

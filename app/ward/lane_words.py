@@ -75,7 +75,9 @@ class LaneWords:
             support=tuple(self._pieces(course)),
             items=tuple(sorted(self._items(f, course), key=lambda i: i.at)),
             state=state_of(gas.state) if gas is not None else None,
-            state_word=state_word(state_of(gas.state)) if gas is not None else translate("ward", "no gas yet"),
+            state_word=state_word(state_of(gas.state))
+            if gas is not None
+            else translate("ward", "no gas yet"),
             verdict=latest,
             verdict_word=verdict_word(latest) if latest is not None else "",
             tier=Tier(strongest.tier) if strongest is not None else None,
@@ -94,12 +96,16 @@ class LaneWords:
         s = f.support
         told = self._indication(f)
         if ambiguous and s.since is not None:
-            told = translate("ward", "{indication}, from {time}").format(indication=told, time=clock(s.since, self.zone))
+            told = translate("ward", "{indication}, from {time}").format(
+                indication=told, time=clock(s.since, self.zone)
+            )
         return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
-        return indication_word(str(indication)) if indication else translate("ward", "indication not recorded")
+        return (
+            indication_word(str(indication)) if indication else translate("ward", "indication not recorded")
+        )
 
     def _due_word(self, due: DueFigure | None) -> str:
         if due is None:
@@ -127,7 +133,9 @@ class LaneWords:
         parts = [f.label, self._indication(f), "" if is_ended(f) else setting]
         gas = _latest_gas(f)
         if gas is not None:
-            parts.append(f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_word(state_of(gas.state))})")
+            parts.append(
+                f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_word(state_of(gas.state))})"
+            )
         latest = _latest_verdict(f)
         if latest is not None:
             parts.append(verdict_word(latest))
@@ -155,12 +163,22 @@ class LaneWords:
             yield self._gas_item(gas, judged.get(gas.at))
         words = _tick_words(course)
         for n, s in enumerate(course.stretches):
-            yield LaneItem(LaneKind.SETTING, s.start, self._change_sentence(n, course), word=words[n],
-                           doubtful=s.doubtful)  # fmt: skip
+            yield LaneItem(
+                LaneKind.SETTING,
+                s.start,
+                self._change_sentence(n, course),
+                word=words[n],
+                doubtful=s.doubtful,
+            )
         for b in course.breaks:
             end = b.end if b.end is not None else self.as_of
-            yield LaneItem(LaneKind.BREAK, b.start, self._break_sentence(b.start, b.end), end=end,
-                           word=translate("ward", "off"))  # fmt: skip
+            yield LaneItem(
+                LaneKind.BREAK,
+                b.start,
+                self._break_sentence(b.start, b.end),
+                end=end,
+                word=translate("ward", "off"),
+            )
         if not is_ended(f):
             yield from self._window_items(f)
         for flag in f.flags:
@@ -169,20 +187,35 @@ class LaneWords:
 
     def _gas_item(self, gas: GasFigure, found: tuple[ResponseFigure, JudgedGas] | None) -> LaneItem:
         verdict = verdict_or_none(found[1].verdict) if found is not None else None
-        parts = [f"{clock(gas.at, self.zone)} {gas_name(gas)}: {gas_words(gas, self.gas_unit)}", state_word(state_of(gas.state))]
+        parts = [
+            f"{clock(gas.at, self.zone)} {gas_name(gas)}: {gas_words(gas, self.gas_unit)}",
+            state_word(state_of(gas.state)),
+        ]
         if found is not None and verdict is not None:
             parts.append(self._verdict_sentence(verdict, found[0], found[1]))
         if gas.doubt:
             parts.append(translate("ward", "doubtful: outside usual limits and not confirmed"))
         if gas.corrected:
             parts.append(translate("ward", "corrected"))
-        return LaneItem(LaneKind.GAS, gas.at, ". ".join(parts), word=f"pH {gas.ph_text or gas.ph or ''}",
-                        verdict=verdict, state=state_of(gas.state), doubtful=gas.doubt or gas.disputed, payload=gas)  # fmt: skip
+        return LaneItem(
+            LaneKind.GAS,
+            gas.at,
+            ". ".join(parts),
+            word=f"pH {gas.ph_text or gas.ph or ''}",
+            verdict=verdict,
+            state=state_of(gas.state),
+            doubtful=gas.doubt or gas.disputed,
+            payload=gas,
+        )
 
     def _verdict_sentence(self, verdict: Verdict, response: ResponseFigure, judged: JudgedGas) -> str:
         text = translate("ward", "{verdict}, {minutes} after {anchor} at {time}")
-        return text.format(verdict=verdict_word(verdict), minutes=minutes(judged.minutes),
-                           anchor=anchor_name(response), time=clock(response.anchor_at, self.zone))  # fmt: skip
+        return text.format(
+            verdict=verdict_word(verdict),
+            minutes=minutes(judged.minutes),
+            anchor=anchor_name(response),
+            time=clock(response.anchor_at, self.zone),
+        )
 
     def _change_sentence(self, n: int, course: Course) -> str:
         s = course.stretches[n]
@@ -198,21 +231,40 @@ class LaneWords:
             return translate("ward", "Off the mask since {time}, {length}").format(time=at, length=length)
         length = minutes((end - start) / MINUTE)
         return translate("ward", "Off the mask {time} to {end}, {length}").format(
-            time=at, end=clock(end, self.zone), length=length)  # fmt: skip
+            time=at, end=clock(end, self.zone), length=length
+        )
 
     def _window_items(self, f: EpisodeFigures) -> Iterator[LaneItem]:
         for r in f.responses:
             if r.headline == "not yet known" and r.superseded_at is None and r.window_to > self.as_of:
-                text = translate("ward", "Response window {start} to {end} after {anchor}: no gas yet").format(
-                    start=clock(r.window_from, self.zone), end=clock(r.window_to, self.zone), anchor=anchor_name(r))  # fmt: skip
-                yield LaneItem(LaneKind.WINDOW, r.window_from, text, end=r.window_to,
-                               word=translate("ward", "gas due"), payload=r)  # fmt: skip
+                text = translate(
+                    "ward", "Response window {start} to {end} after {anchor}: no gas yet"
+                ).format(
+                    start=clock(r.window_from, self.zone),
+                    end=clock(r.window_to, self.zone),
+                    anchor=anchor_name(r),
+                )
+                yield LaneItem(
+                    LaneKind.WINDOW,
+                    r.window_from,
+                    text,
+                    end=r.window_to,
+                    word=translate("ward", "gas due"),
+                    payload=r,
+                )
 
     def _flag_item(self, flag: FlagFigure) -> LaneItem:
         evidence = "; ".join(sentence(e, self.reader) for e in flag.evidence)
         text = f"{clock(flag.since, self.zone)} {tier_word(Tier(flag.tier))}: {marker_name(flag.marker)}. {evidence}"
-        return LaneItem(LaneKind.FLAG, flag.since, text, word=marker_name(flag.marker), tier=Tier(flag.tier),
-                        settled=flag.state != "raised", payload=flag)  # fmt: skip
+        return LaneItem(
+            LaneKind.FLAG,
+            flag.since,
+            text,
+            word=marker_name(flag.marker),
+            tier=Tier(flag.tier),
+            settled=flag.state != "raised",
+            payload=flag,
+        )
 
 
 def _tick_words(course: Course) -> list[str]:

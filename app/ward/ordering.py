@@ -77,8 +77,11 @@ def _passes(f: EpisodeFigures, which: Shown) -> bool:
     if which is Shown.NOT_RESPONDING:
         strong = any(g.state in _OPEN_FLAG and g.tier in ("escalate", "concern") for g in f.flags)
         latest = next((r for r in reversed(f.responses) if r.headline_gas_at is not None), None)
-        poor = latest is not None and latest.headline in ("worse", "mixed", "no clear change") \
+        poor = (
+            latest is not None
+            and latest.headline in ("worse", "mixed", "no clear change")
             and latest.state != "resolved"
+        )
         return not is_ended(f) and (strong or poor)
     if which is Shown.DUE:
         return any(d.state in _URGENT for d in f.due)
@@ -86,7 +89,9 @@ def _passes(f: EpisodeFigures, which: Shown) -> bool:
 
 
 def _holds(f: EpisodeFigures, words: Sequence[str]) -> bool:
-    text = " ".join(str(x) for x in (f.label, f.episode, f.profile.get("location"), f.profile.get("indication")) if x)
+    text = " ".join(
+        str(x) for x in (f.label, f.episode, f.profile.get("location"), f.profile.get("indication")) if x
+    )
     return all(w in text.casefold() for w in words)
 
 

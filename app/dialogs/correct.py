@@ -1,0 +1,208 @@
+"""What was logged for a patient, to be corrected, withdrawn or moved, with a reason. The old stays visible."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from enum import StrEnum
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import (
+    QAbstractItemView,
+    QComboBox,
+    QHeaderView,
+    QLineEdit,
+    QTreeWidget,
+    QTreeWidgetItem,
+    QWidget,
+)
+
+from app.dialogs.asking import AskingDialog
+from app.failure import Failure
+from app.formats import quantity, wall
+from app.operations import entry
+from app.operations.outcome import Outcome
+from app.phrases import channel_name
+from app.session import SessionModel
+from app.theme import Theme
+from app.words import Reader, sentence
+from core.record.channels import CHANNELS, Kind
+from core.record.entries import Entry
+from core.record.episode import Episode
+from core.record.instant import Instant
+from core.record.local_time import latest_wall_time, local
+from core.record.message import RecordError
+
+_ENTRY = Qt.ItemDataRole.UserRole
+
+
+class Act(StrEnum):
+    """What is to be done to an entry."""
+
+    CORRECT = "correct"
+    WITHDRAW = "withdraw"
+    MOVE = "move"
+
+
+class CorrectDialog(AskingDialog):
+    """Newest entries first. `recorded` after it was done, so that it can be undone."""
+
+    recorded = Signal(object)
+
+    def __init__(
+        self,
+        model: SessionModel,
+        record: Episode,
+        labels: Mapping[str, str],
+        reader: Reader,
+        theme: Theme,
+        parent: QWidget | None = None,
+    ) -> None:
+        title = labels.get(record.key, record.key)
+        super().__init__("", "", theme, parent)
+        self.setWindowTitle(self.tr("Correct or withdraw, {label}").format(label=title))
+        self.go.setText(self.tr("Record it"))
+        self._model, self._record, self._reader = model, record, reader
+        self._confirmed = False
+        self.list = QTreeWidget()
+        self.list.setAccessibleName(self.tr("Logged values, newest first"))
+        self.list.setHeaderLabels(
+            [self.tr("When"), self.tr("What"), self.tr("Value"), self.tr("By"), self.tr("Marks")]
+        )
+        self.list.setRootIsDecorated(False)
+        self.list.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
+        self.list.header().setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
+        self.body.addWidget(self.list)
+        self.act, self.value, self.time, self.to, self.reason = (
+            QComboBox(),
+            QLineEdit(),
+            QLineEdit(),
+            QComboBox(),
+            QLineEdit(),
+        )
+        for act, word in (
+            (Act.CORRECT, self.tr("correct the value or the time")),
+            (Act.WITHDRAW, self.tr("withdraw: it must not count")),
+            (Act.MOVE, self.tr("move to another patient")),
+        ):
+            self.act.addItem(word, act)
+        for key, label in labels.items():
+            if key != record.key:
+                self.to.addItem(label, key)
+        self.field(self.tr("What to do"), self.act)
+        self.field(self.tr("Right value, with unit"), self.value)
+        self.field(self.tr("Right time, HH:MM"), self.time)
+        self.field(self.tr("Right patient"), self.to)
+        self.field(self.tr("Reason"), self.reason)
+        self.list.currentItemChanged.connect(self._chosen)
+        self.act.currentIndexChanged.connect(self._act_chosen)
+        self._fill()
+        self._act_chosen()
+        self.resize(theme.px(720), theme.px(600))
+
+    def _fill(self) -> None:
+        for s in sorted(self._record.standing, key=lambda s: (-s.entry.at, -s.entry.seq)):
+            e = s.entry
+            if CHANNELS[e.channel].kind is Kind.MARK:
+                shown = e.words or ""
+            else:
+                shown = f"{e.raw} {e.raw_unit}".strip() or quantity(
+                    e.channel, e.number if e.number is not None else e.words
+                )
+            marks = [
+                word
+                for word, held in (
+                    (self.tr("corrected"), s.corrected),
+                    (self.tr("disputed"), s.disputed),
+                    (self.tr("doubtful"), bool(e.doubt)),
+                )
+                if held
+            ]
+            item = QTreeWidgetItem(
+                [wall(e.at, self._reader.zone), channel_name(e.channel), shown, e.by, ", ".join(marks)]
+            )
+            item.setData(0, _ENTRY, e.id)
+            self.list.addTopLevelItem(item)
+        if self.list.topLevelItemCount():
+            self.list.setCurrentItem(self.list.topLevelItem(0))
+
+    def _chosen(self) -> None:
+        found = self._entry()
+        if found is not None:
+            self._confirmed = False
+            self.value.setText(
+                f"{found.raw} {found.raw_unit}".strip()
+                if CHANNELS[found.channel].kind is not Kind.MARK
+                else found.words or ""
+            )
+            moment = local(found.at, self._reader.zone)
+            self.time.setText(f"{moment:%H:%M}")
+
+    def _entry(self) -> Entry | None:
+        item = self.list.currentItem()
+        wanted = item.data(0, _ENTRY) if item is not None else None
+        return next((s.entry for s in self._record.standing if s.entry.id == wanted), None)
+
+    def _act_chosen(self) -> None:
+        act = self.act.currentData()
+        self.value.setEnabled(act == Act.CORRECT)
+        self.time.setEnabled(act == Act.CORRECT)
+        self.to.setEnabled(act == Act.MOVE)
+
+    def submit(self) -> None:
+        found = self._entry()
+        if found is None:
+            self.refuse(self.tr("Choose what was logged."))
+            return
+        if not self.reason.text().strip():
+            self.refuse(self.tr("Give the reason in a few words."))
+            self.reason.setFocus()
+            return
+        try:
+            self._ask(found)
+        except RecordError as error:
+            self.refuse(sentence(error.message, self._reader))
+
+    def _ask(self, found: Entry) -> None:
+        act, reason = self.act.currentData(), self.reason.text()
+        if act == Act.WITHDRAW:
+            request: object = entry.WithdrawalRequest(found.episode, found.id, reason)
+            self._model.ask(entry.withdraw, request, done=self._done, failed=self._failed)
+        elif act == Act.MOVE:
+            request = entry.MoveRequest(found.episode, found.id, self.to.currentData() or "", reason)
+            self._model.ask(entry.move, request, done=self._done, failed=self._failed)
+        else:
+            value, unit = self._typed(found)
+            request = entry.CorrectionRequest(
+                found.episode, found.id, reason, value, unit, self._at(found), self._confirmed
+            )
+            self._model.ask(entry.correct, request, done=self._done, failed=self._failed)
+
+    def _typed(self, found: Entry) -> tuple[str | None, str]:
+        text = self.value.text().strip()
+        if text == f"{found.raw} {found.raw_unit}".strip():
+            return None, ""
+        if CHANNELS[found.channel].kind is Kind.NUMBER:
+            value, _, unit = text.partition(" ")
+            return value, unit.strip()
+        return text, ""
+
+    def _at(self, found: Entry) -> Instant | None:
+        """The right time, or None where it was left as it is: near the time it was logged for."""
+        text = self.time.text().strip()
+        if text == f"{local(found.at, self._reader.zone):%H:%M}":
+            return None
+        hour, _, minute = text.partition(":")
+        if not (hour.isdigit() and minute.isdigit()):
+            hour, minute = "99", "99"
+        return latest_wall_time(int(hour), int(minute), now=self._model.session.now(), zone=self._reader.zone)
+
+    def _done(self, outcome: Outcome[entry.Recorded]) -> None:
+        self.recorded.emit(outcome.value)
+        self.accept()
+
+    def _failed(self, failure: Failure) -> None:
+        text = sentence(failure.message, self._reader)
+        if failure.message.key == "line.unconfirmed":
+            self._confirmed = True
+            text += self.tr(" 'Record it' again says yes.")
+        self.refuse(text)

@@ -1,0 +1,278 @@
+"""The user's panels: add, name, fill with channels, fix the axis, order, duplicate, remove, reset, carry away."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import (
+    QCheckBox,
+    QDialog,
+    QFileDialog,
+    QGridLayout,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QListWidget,
+    QListWidgetItem,
+    QPushButton,
+    QSlider,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app.episode_feed import shipped_titles
+from app.panels import PanelSet, drawable, from_toml, shipped, to_toml, unit_of
+from app.phrases import computed_name
+from app.theme import Theme
+from app.words import Reader, sentence
+from core.record.message import RecordError
+
+_KEY = Qt.ItemDataRole.UserRole
+
+
+class PanelEditor(QDialog):
+    """`kept(PanelSet)` when the person keeps them, `kept(None)` for the shipped ones."""
+
+    kept = Signal(object)
+
+    def __init__(self, panels: PanelSet, family: str, theme: Theme, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.panels, self._family, self._theme = panels, family, theme
+        self._history: list[PanelSet] = []
+        self._filling = False
+        self._reset = False
+        self.setWindowTitle(self.tr("Panels"))
+        self.list, self.channels = QListWidget(), QListWidget()
+        self.name, self.low, self.high = QLineEdit(), QLineEdit(), QLineEdit()
+        self.height_slider = QSlider(Qt.Orientation.Horizontal)
+        self.height_slider.setRange(5, 30)
+        self.bands = QCheckBox(self.tr("Draw targets and limits"))
+        self.wrong = QLabel()
+        self.wrong.setWordWrap(True)
+        self.wrong.setProperty("role", "strong")
+        self._lay_out()
+        self._connect()
+        self._show(panels.panels[0].key)
+        self.resize(theme.px(860), theme.px(600))
+
+    def _lay_out(self) -> None:
+        px = self._theme.px
+        self.list.setAccessibleName(self.tr("Panels, top to bottom"))
+        self.channels.setAccessibleName(self.tr("Channels in this panel"))
+        grid = QGridLayout()
+        grid.setSpacing(px(8))
+        fields = (
+            (self.tr("Name"), self.name),
+            (self.tr("Channels, of one or two units"), self.channels),
+            (self.tr("Axis from"), self.low),
+            (self.tr("Axis to"), self.high),
+            (self.tr("Height"), self.height_slider),
+        )
+        for n, (word, widget) in enumerate(fields):
+            widget.setAccessibleName(word)
+            grid.addWidget(QLabel(word), n, 0, Qt.AlignmentFlag.AlignTop)
+            grid.addWidget(widget, n, 1)
+        grid.addWidget(self.bands, len(fields), 1)
+        for field in (self.low, self.high):
+            field.setPlaceholderText(self.tr("follows the values"))
+        buttons: tuple[tuple[str, Callable[[], None]], ...] = (
+            (self.tr("Add"), self.add),
+            (self.tr("Duplicate"), self.duplicate),
+            (self.tr("Remove"), self.remove),
+            (self.tr("Up"), self.up),
+            (self.tr("Down"), self.down),
+            (self.tr("Undo"), self.undo),
+        )
+        tools = QGridLayout()
+        for n, (word, slot) in enumerate(buttons):
+            tools.addWidget(self._button(word, slot), n // 3, n % 3)
+        left = QVBoxLayout()
+        left.addWidget(self.list, 1)
+        left.addLayout(tools)
+        upper = QHBoxLayout()
+        upper.addLayout(left, 2)
+        upper.addLayout(grid, 3)
+        foot = QHBoxLayout()
+        for word, slot in (
+            (self.tr("Reset to shipped"), self.reset),
+            (self.tr("Save as file..."), self.save_file),
+            (self.tr("Take from file..."), self.take_file),
+        ):
+            foot.addWidget(self._button(word, slot))
+        foot.addStretch(1)
+        self.keep_button = self._button(self.tr("Keep"), self.keep)
+        self.keep_button.setProperty("role", "primary")
+        foot.addWidget(self._button(self.tr("Leave"), self.reject))
+        foot.addWidget(self.keep_button)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(px(16), px(16), px(16), px(16))
+        column.addLayout(upper, 1)
+        column.addWidget(self.wrong)
+        column.addLayout(foot)
+
+    def _button(self, word: str, slot: Callable[[], None]) -> QPushButton:
+        button = QPushButton(word)
+        button.setAutoDefault(False)
+        button.clicked.connect(slot)
+        return button
+
+    def _connect(self) -> None:
+        self.list.currentItemChanged.connect(self._chosen)
+        self.name.editingFinished.connect(self._edited)
+        self.low.editingFinished.connect(self._edited)
+        self.high.editingFinished.connect(self._edited)
+        self.height_slider.sliderReleased.connect(self._edited)
+        self.bands.clicked.connect(self._edited)
+        self.channels.itemChanged.connect(self._channel_ticked)
+
+    # the panel in hand
+
+    @property
+    def key(self) -> str:
+        """The panel in hand."""
+        item = self.list.currentItem()
+        return item.data(_KEY) if item is not None else self.panels.panels[0].key
+
+    def _show(self, key: str) -> None:
+        self._filling = True
+        self.list.clear()
+        for p in self.panels.panels:
+            item = QListWidgetItem(p.title)
+            item.setData(_KEY, p.key)
+            self.list.addItem(item)
+        self.list.setCurrentRow(self.panels.index(key))
+        self._fill()
+        self._filling = False
+
+    def _fill(self) -> None:
+        panel = self.panels.get(self.key)
+        self.name.setText(panel.title)
+        self.low.setText("" if panel.low is None else f"{panel.low:g}")
+        self.high.setText("" if panel.high is None else f"{panel.high:g}")
+        self.height_slider.setValue(round(panel.height * 10))
+        self.bands.setChecked(panel.bands)
+        self.channels.clear()
+        order = (*panel.channels, *(c for c in drawable() if c not in panel.channels))
+        for channel in order:
+            item = QListWidgetItem(f"{computed_name(channel)}, {unit_of(channel)}")
+            item.setData(_KEY, channel)
+            item.setFlags(item.flags() | Qt.ItemFlag.ItemIsUserCheckable)
+            item.setCheckState(
+                Qt.CheckState.Checked if channel in panel.channels else Qt.CheckState.Unchecked
+            )
+            self.channels.addItem(item)
+
+    def _chosen(self) -> None:
+        if not self._filling:
+            self._filling = True
+            self._fill()
+            self._filling = False
+
+    def _edited(self) -> None:
+        if self._filling:
+            return
+        ends = [self._number(field) for field in (self.low, self.high)]
+        self._become(
+            self.panels.changed,
+            self.key,
+            title=self.name.text(),
+            low=ends[0],
+            high=ends[1],
+            height=self.height_slider.value() / 10,
+            bands=self.bands.isChecked(),
+        )
+
+    def _number(self, field: QLineEdit) -> float | None:
+        text = field.text().strip().replace(",", ".")
+        try:
+            return float(text) if text else None
+        except ValueError:
+            return None
+
+    def _channel_ticked(self, _item: QListWidgetItem) -> None:
+        if self._filling:
+            return
+        items = (self.channels.item(n) for n in range(self.channels.count()))
+        ticked = tuple(i.data(_KEY) for i in items if i.checkState() is Qt.CheckState.Checked)
+        self._become(self.panels.changed, self.key, channels=ticked)
+
+    def _become(self, change: Callable[..., PanelSet], *args: object, **values: object) -> None:
+        """Take a changed set; a refused change is said and shown undone."""
+        key = self.key
+        try:
+            made = change(*args, **values)
+        except RecordError as error:
+            self.wrong.setText(sentence(error.message, Reader()))
+            self._show(key)
+            return
+        self.wrong.setText("")
+        self._reset = False
+        self._history.append(self.panels)
+        self.panels = made
+        kept = [p.key for p in made.panels]
+        self._show(key if key in kept else kept[-1])
+
+    # buttons
+
+    def add(self) -> None:
+        """A new panel at the foot."""
+        self._become(self.panels.added, self.tr("New panel"), ("spo2",))
+        self.list.setCurrentRow(len(self.panels.panels) - 1)
+        self.name.setFocus()
+        self.name.selectAll()
+
+    def duplicate(self) -> None:
+        """A copy under the panel in hand."""
+        title = self.tr("{title}, copy").format(title=self.panels.get(self.key).title)
+        self._become(self.panels.duplicated, self.key, title)
+
+    def remove(self) -> None:
+        """Without the panel in hand."""
+        self._become(self.panels.removed, self.key)
+
+    def up(self) -> None:
+        """One place up."""
+        self._become(self.panels.moved, self.key, -1)
+
+    def down(self) -> None:
+        """One place down."""
+        self._become(self.panels.moved, self.key, 1)
+
+    def undo(self) -> None:
+        """Back to the set before the last change."""
+        if self._history:
+            key = self.key
+            self.panels = self._history.pop()
+            self._show(key if key in [p.key for p in self.panels.panels] else self.panels.panels[0].key)
+
+    def reset(self) -> None:
+        """The shipped panels again."""
+        self._become(shipped, self._family, shipped_titles())
+        self._reset = True
+
+    def keep(self) -> None:
+        """Keep the panels for every episode of this kind."""
+        self.kept.emit(None if self._reset else self.panels)
+        self.accept()
+
+    def save_file(self) -> None:
+        """Write them as TOML."""
+        chosen, _ = QFileDialog.getSaveFileName(self, self.tr("Save panels"), "panels.toml", "TOML (*.toml)")
+        if chosen:
+            try:
+                Path(chosen).write_text(to_toml(self.panels), "utf-8")
+            except OSError as error:
+                self.wrong.setText(str(error))
+
+    def take_file(self) -> None:
+        """Read them from TOML."""
+        chosen, _ = QFileDialog.getOpenFileName(self, self.tr("Take panels"), "", "TOML (*.toml)")
+        if chosen:
+            try:
+                text = Path(chosen).read_text("utf-8")
+            except (OSError, UnicodeDecodeError) as error:
+                self.wrong.setText(str(error))
+                return
+            self._become(from_toml, text)

@@ -1,0 +1,53 @@
+"""Starting the window: one application, the kept preferences, and what is to be shown first."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+
+from PySide6.QtCore import QTimer
+from PySide6.QtWidgets import QApplication
+
+from app import preferences as kept
+from app.theme import THEMES, apply_theme
+from app.window import MainWindow
+
+
+def application() -> QApplication:
+    """The one application of this process, made when there is none."""
+    found = QApplication.instance()
+    if isinstance(found, QApplication):
+        return found
+    app = QApplication(sys.argv[:1])
+    app.setApplicationName("luffmark")
+    app.setApplicationDisplayName("Luffmark")
+    app.setDesktopFileName("luffmark")
+    return app
+
+
+def make_window() -> MainWindow:
+    """The window with the kept preferences, dressed and not yet shown."""
+    app = application()
+    path = kept.default_path()
+    preferences = kept.load(path)
+    apply_theme(app, THEMES[preferences.theme].scaled(preferences.text_scale))
+    return MainWindow(preferences, path)
+
+
+def run_window(store: Path | None = None, passphrase: str | None = None, by: str = "") -> int:
+    """Open the window on a store, or on the first page; returns when it is closed."""
+    window = make_window()
+    window.show()
+    if by:
+        window.prefer(person=by)
+    if store is not None:
+        window.doers.file.open_path(store, passphrase=passphrase, create=not store.exists())
+    return application().exec()
+
+
+def run_demo() -> int:
+    """Open the window on the sample shift in a throw-away store; returns when it is closed."""
+    window = make_window()
+    window.show()
+    QTimer.singleShot(0, window.doers.file.do_sample_shift)
+    return application().exec()

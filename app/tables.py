@@ -1,0 +1,162 @@
+"""Every chart as a table and a text: for screen readers, for copying, and for whoever trusts numbers more."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from app.chart.shapes import LanesSpec, Look, StackSpec, Trace
+from app.compare.courses import Comparison, words_of
+from app.formats import fixed, wall
+from app.phrases import translate
+from app.ward_view import WardContent
+
+if TYPE_CHECKING:
+    from app.window import MainWindow
+
+MOST_ROWS = 5000
+
+
+@dataclass(frozen=True, slots=True)
+class Table:
+    """A table with its title and its text."""
+
+    title: str
+    heads: tuple[str, ...]
+    rows: tuple[tuple[str, ...], ...]
+    text: str = ""
+
+    def as_tsv(self) -> str:
+        """Tab-separated, as spreadsheets paste it."""
+        lines = [
+            "\t".join(self.heads),
+            *("\t".join(c.replace("\t", " ").replace("\n", " ") for c in row) for row in self.rows),
+        ]
+        return "\n".join(lines)
+
+
+def table_of_lanes(spec: LanesSpec, content: WardContent) -> Table:
+    """The ward as a table: a row for each lane."""
+    heads = (
+        translate("tables", "Bed"),
+        translate("tables", "About"),
+        translate("tables", "State"),
+        translate("tables", "Response"),
+        translate("tables", "Open flags"),
+        translate("tables", "Next due"),
+        translate("tables", "Items along the clock"),
+    )
+    rows = tuple(
+        (
+            lane.title,
+            lane.subtitle,
+            lane.state_word,
+            lane.verdict_word,
+            lane.flag_word,
+            lane.due_word,
+            "; ".join(i.sentence for i in lane.items),
+        )
+        for lane in spec.lanes
+    )
+    title = translate("tables", "Ward as of {time}").format(time=wall(content.as_of, content.zone))
+    return Table(title, heads, rows, "\n".join(lane.sentence for lane in spec.lanes))
+
+
+def table_of_stack(spec: StackSpec) -> Table:
+    """An episode's panels as a table: a row for each value, by time."""
+    heads = (
+        translate("tables", "When"),
+        translate("tables", "What"),
+        translate("tables", "Value"),
+        translate("tables", "Unit"),
+        translate("tables", "Panel"),
+        translate("tables", "Marks"),
+    )
+    found: list[tuple[int, tuple[str, ...]]] = []
+    for panel in spec.panels:
+        for trace in panel.traces:
+            found += _rows(trace, panel.title, str(spec.zone))
+    found += [
+        (tick.at, (wall(tick.at, str(spec.zone)), tick.word, "", "", translate("tables", "Event"), ""))
+        for tick in spec.events
+    ]
+    if spec.ribbon is not None:
+        found += [
+            (t.at, (wall(t.at, str(spec.zone)), t.word, "", "", spec.ribbon.title, ""))
+            for t in spec.ribbon.ticks
+        ]
+    found.sort(key=lambda row: row[0])
+    return Table(spec.name, heads, tuple(row for _, row in found[-MOST_ROWS:]), spec.summary)
+
+
+def _rows(trace: Trace, panel: str, zone: str) -> list[tuple[int, tuple[str, ...]]]:
+    words = {
+        Look.DOUBTFUL: translate("tables", "doubtful"),
+        Look.CORRECTED: translate("tables", "corrected"),
+        Look.DISPUTED: translate("tables", "disputed"),
+        Look.CARRIED: translate("tables", "carried forward"),
+    }
+    made = []
+    for n in np.flatnonzero(np.isfinite(trace.v)):
+        at = int(trace.t[n])
+        marks = (
+            [words[Look(trace.looks[n])]] if trace.looks is not None and Look(trace.looks[n]) in words else []
+        )
+        marks += [span.word for span in trace.doubts if span.start <= at < span.end]
+        made.append(
+            (
+                at,
+                (
+                    wall(at, zone),
+                    trace.name,
+                    fixed(float(trace.v[n]), trace.decimals),
+                    trace.unit,
+                    panel,
+                    ", ".join(marks),
+                ),
+            )
+        )
+    return made
+
+
+def table_of_comparison(comparison: Comparison) -> Table:
+    """A comparison as a table: a row for each value."""
+    heads = (
+        translate("tables", "Quantity"),
+        translate("tables", "Episode"),
+        translate("tables", "Hours since start"),
+        translate("tables", "Value"),
+        translate("tables", "Unit"),
+    )
+    rows = tuple(
+        (
+            row.title,
+            comparison.names[line.number],
+            fixed(float(h), 2),
+            fixed(float(v), row.decimals),
+            row.unit,
+        )
+        for row in comparison.rows
+        for line in row.lines
+        for h, v in zip(line.hours, line.values, strict=True)
+        if v == v
+    )
+    return Table(
+        translate("tables", "Episodes by hours since start"), heads, rows, "\n".join(words_of(comparison))
+    )
+
+
+def table_of_page(window: MainWindow) -> Table | None:
+    """The table of the page that the window shows; None where it is text already."""
+    pages, feed = window.pages, window.feed
+    if pages is None or feed is None:
+        return None
+    if pages.name == "ward" and pages.ward.lanes.spec is not None:
+        return table_of_lanes(pages.ward.lanes.spec, feed.content())
+    if pages.name == "episode" and pages.episode.stack.spec is not None:
+        return table_of_stack(pages.episode.stack.spec)
+    if pages.name == "compare" and pages.compare.chart.comparison is not None:
+        return table_of_comparison(pages.compare.chart.comparison)
+    return None
