@@ -18,7 +18,7 @@ __all__ = ["Reader", "sentence", "templates"]
 
 _log = logging.getLogger("luffmark")
 DEFAULT = Reader()
-_NAME_FIRST = re.compile(r"\{\w+:name\}")
+_NAME_FIRST = re.compile(r"\{\w+:(name|marker|due)\}")
 
 
 @lru_cache(maxsize=1)
@@ -28,10 +28,10 @@ def templates() -> Mapping[str, str]:
     Raises:
         ValueError: two catalogues name the same key.
     """
-    from app.words import findings, names, refusals, responses, surroundings
+    from app.words import findings, judgements, names, refusals, responses, surroundings
 
     found: dict[str, str] = {}
-    for catalogue in (refusals, surroundings, findings, responses, names):
+    for catalogue in (refusals, surroundings, findings, responses, judgements, names):
         twice = found.keys() & catalogue.TEMPLATES.keys()
         if twice:
             raise ValueError(f"message keys with two templates: {', '.join(sorted(twice))}")

@@ -4,7 +4,7 @@ from typing import Final
 
 TEMPLATES: Final[dict[str, str]] = {
     "batch.empty": "There is nothing to record.",
-    "channel.unknown": "'{channel}' is no channel. Near it: {accepted}.",
+    "channel.unknown": "'{channel}' is no channel. Accepted, near it: {accepted}.",
     "correction.many_entries": "{count} entries begin with '{entry}'. Accepted: {accepted}.",
     "correction.no_reason": "A correction needs its reason: {accepted}.",
     "correction.same_episode": "The entry is in {episode} already. Name {accepted}.",
@@ -28,6 +28,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "entry.replaces_other_episode": "An entry of {value} cannot replace one of {accepted}.",
     "entry.replaces_unknown": "There is no entry '{value}' to replace. Accepted: {accepted}.",
     "entry.span_backwards": "The span ends before it starts. Accepted: {accepted}.",
+    "entry.span_only_withdrawn": "A mask or shift of device samples can only be withdrawn. Accepted: {accepted}.",
     "entry.text_too_long": "The {field} is {length} characters long; at most {accepted} are accepted.",
     "entry.text_unreadable": "The {field} holds characters that cannot be kept. Accepted: {accepted}.",
     "entry.time_out_of_range": "The time of an entry is out of range. Accepted: {accepted}.",
@@ -73,6 +74,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "policy.invalid": "This is no usable policy: {detail}.",
     "policy.unreadable": "The policy is no TOML text: {detail}.",
     "row.columns": "The row has {found} fields; the header has {accepted}.",
+    "row.device_entry": "'{value}' is no action for device samples. Accepted: {accepted}.",
     "row.quotes": "A quotation mark is not closed, or stands in a wrong place ({detail}).",
     "row.repeated": "The row stands in the file already, on line {first_line}. Accepted: {accepted}.",
     "row.two_values": "{channel:name} has another value at the same moment on line {first_line}: {first:of}. "

@@ -5,9 +5,11 @@
     "{where:pick below=under;above=over}"          a word for a value that is one of a few
 
 How values are written (see `_WRITERS`): `time` an instant, `clock` its hour and minute, `0` to `3` fixed
-decimals, `+2` with sign, `trim` at most two decimals, `gas` a gas pressure in the reader's unit, `gas+` with sign,
-`fraction` an FiO2 in per cent, `name` a channel's name, `unit` its unit, `of` a value of the channel named in
-`channel`, `q` of the quantity named in `quantity`, `minutes` a length of time, `hours`, `list`.
+decimals, `+2` with sign, `trim` at most two decimals, `gas` a gas pressure in the reader's unit, `gas+` with
+sign, `fraction` an FiO2 in per cent, `name` a channel's name, `unit` its unit, `of` a value of the channel named
+in `channel`, `q` of the quantity named in `quantity` (`q+` with sign, `qn` a noise limit, `qt` as typed),
+`minutes` a length of time, `hours`, `list`, `marker` and `due` a marker's and a due item's name. In a `pick`, `#`
+stands for the value itself.
 """
 
 from __future__ import annotations
@@ -130,7 +132,7 @@ def _picked(value: Value, choices: str) -> str:
         key = {True: "yes", False: "no", None: "none"}[value]
     else:
         key = value if isinstance(value, str) else formats.trimmed(value)
-    return words.get(key, words.get("else", str(value)))
+    return words.get(key, words.get("else", str(value))).replace("#", key)
 
 
 def _number(value: Value) -> float:
@@ -154,20 +156,41 @@ def quantity_text(quantity: str, value: float, reader: Reader, *, sign: bool = F
     """A value of pH, PaCO2, P/F, rate or SpO2 with its unit; noise limits keep the digits they need."""
     if quantity == "ph":
         return (formats.signed if sign else formats.fixed)(value, 3 if noise else 2)
-    if quantity in ("paco2", "pao2"):
+    if quantity in ("paco2", "pao2", "pf", "aa"):
         if noise and reader.gas_unit == "mmHg":
             return f"{formats.trimmed(value, 1)} mmHg"
         return formats.gas_pressure(value, reader.gas_unit, sign=sign)
-    text = formats.signed(value, 0) if sign else formats.trimmed(value, 1 if noise else 0)
-    unit = {"pf": "mmHg", "rr": "/min", "spo2": "%", "gcs": "", "fio2": ""}.get(quantity, "")
+    if quantity in CHANNELS and not sign and not noise:
+        return formats.quantity(quantity, value, reader.gas_unit)
     if quantity == "fio2":
-        return formats.fraction(value)
-    return formats.with_unit(text, unit)
+        return f"{formats.signed(value * 100, 0)} %" if sign else formats.fraction(value)
+    unit = formats.shown_unit(quantity) if quantity in CHANNELS else ""
+    decimals = {"sf": 0, "rox": 2}.get(quantity, CHANNELS[quantity].decimals if quantity in CHANNELS else 1)
+    return formats.with_unit(formats.signed(value, decimals) if sign else formats.trimmed(value, decimals or 1), unit)
 
 
 def _quantity(*, sign: bool = False, noise: bool = False) -> Writer:
     def written(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
         return quantity_text(str(values.get("quantity", "")), _number(value), reader, sign=sign, noise=noise)
+
+    return written
+
+
+def _as_typed(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
+    """A value of the quantity named in `quantity`; a pH with the digits it was reported in, if `text` has them."""
+    typed = values.get("text")
+    if values.get("quantity") == "ph" and isinstance(typed, str) and typed:
+        return typed
+    return _quantity()(value, values, reader)
+
+
+def _name_from(kind: str) -> Writer:
+    """The name of a marker or due item."""
+
+    def written(value: Value, _values: Mapping[str, Value], reader: Reader) -> str:
+        from app.words.names import TEMPLATES
+
+        return reader.translate(TEMPLATES.get(f"{kind}.{value}", str(value).replace("_", " ")))
 
     return written
 
@@ -200,6 +223,9 @@ _WRITERS: dict[str, Writer] = {
     "q": _quantity(),
     "q+": _quantity(sign=True),
     "qn": _quantity(noise=True),
+    "qt": _as_typed,
+    "marker": _name_from("marker"),
+    "due": _name_from("due_item"),
     "minutes": lambda v, _m, _r: formats.minutes(_number(v)),
     "hours": lambda v, _m, _r: formats.hours(_number(v)),
     "list": _listed,

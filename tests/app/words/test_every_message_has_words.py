@@ -13,6 +13,7 @@ import pytest
 
 from app.words import templates
 from app.words.template import MISSING, Reader, all_fields, fields, fill
+from core.judgement.expected_co2 import EXPLAIN_HIGHER, EXPLAIN_LOWER
 from core.judgement.policy import shipped_policy
 from core.physiology.classification import Disturbance
 from core.record.channels import SITES
@@ -25,10 +26,51 @@ LOG = {"entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo
 """Names of operations in the ledger, written like keys."""
 
 POLICY = shipped_policy()
+
+
+def first_arguments(path: Path, function: str) -> list[str]:
+    """Literal first arguments of a module's own helper that puts a family before its key."""
+    found = []
+    for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+        if isinstance(node, ast.Call) and isinstance(node.func, ast.Name) and node.func.id == function:
+            arms = [node.args[0]]
+            if isinstance(arms[0], ast.IfExp):
+                arms = [arms[0].body, arms[0].orelse]
+            found += [a.value for a in arms if isinstance(a, ast.Constant)]
+    return sorted({str(f) for f in found})
+
+
+def assigned_keys(path: Path) -> list[str]:
+    """Texts assigned to a name `key` in a module."""
+    found: list[str] = []
+    for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+        if isinstance(node, ast.Assign) and any(isinstance(t, ast.Name) and t.id == "key" for t in node.targets):
+            arms = [node.value.body, node.value.orelse] if isinstance(node.value, ast.IfExp) else [node.value]
+            found += [a.value for a in arms if isinstance(a, ast.Constant) and isinstance(a.value, str)]
+    return found
+
+
+def functions_of(folder: Path) -> list[str]:
+    """Every function of the marker modules that finds spells: its name is the marker's key."""
+    found = []
+    for path in folder.glob("*.py"):
+        for node in ast.parse(path.read_text("utf-8")).body:
+            returns = ast.unparse(node.returns) if isinstance(node, ast.FunctionDef) and node.returns else ""
+            if isinstance(node, ast.FunctionDef) and not node.name.startswith("_") and returns == "Iterable[Spell]":
+                found.append(node.name)
+    return found
+
+
+JUDGEMENT = ROOT / "core" / "judgement"
+LEVERS = JUDGEMENT / "levers.py"
 DYNAMIC = {
-    "marker.": sorted(POLICY.markers),
+    "marker.": sorted({*POLICY.markers, *functions_of(JUDGEMENT / "markers")}),
     "due_item.": sorted(POLICY.due),
     "group.": sorted({m.group for m in POLICY.markers.values()}),
+    "lever_name.": first_arguments(LEVERS, "_lever"),
+    "lever.": sorted({*first_arguments(LEVERS, "_say"), *assigned_keys(LEVERS)}),
+    "due.": ["mask_check", "oxygen_review"],
+    "expected.": [*EXPLAIN_HIGHER, *EXPLAIN_LOWER, "within_band"],
     "gas_class.": [d.name.lower() for d in Disturbance],
     "specimen.": [f"{s}_is_not_arterial" for s in SITES],
     "response.": ["serves_as_baseline", "before_baseline", "baseline_early", "early", "capillary",

@@ -1,0 +1,156 @@
+"""Why a flag stands, what is due and why, what could act, whom to see first: core's judgement in words."""
+
+from typing import Final
+
+_STATE = "pick severe=severe acidosis;acidotic=acidotic;resolved=not acidotic"
+_DOUBT = (
+    "pick unconfirmed=holds a value nobody confirmed;inconsistent=does not agree with itself;"
+    "corrected=was corrected;disputed=is disputed: corrected twice;"
+    "site assumed=has no site recorded, taken as arterial"
+)
+_POPULATION = "validated in: {population}"
+
+EVIDENCE: Final[dict[str, str]] = {
+    "evidence.after_beta_agonist": "A beta-agonist was given at {at:time}[[ ({text})]]: lactate may come from it.",
+    "evidence.ceiling": "Ceiling of care: {ceiling}.",
+    "evidence.change": "{quantity:name} {before:q} ({before_at:time}) to {after:q} ({at:time}), {change:q+}"
+        "[[, noise {noise:qn}]].",
+    "evidence.event": "{event:name}[[ {text}]] at {at:time}.",
+    "evidence.failed_percent": "In the source {percent:0} % of those with {points:trim} points failed.",
+    "evidence.gas_doubt": "The gas of {at:time} {doubt:" + _DOUBT + "}.",
+    "evidence.hours": "{hours:hours} {what} (limit {limit:trim} h).",
+    "evidence.no_reason_logged": "No reason for it is logged.",
+    "evidence.off_support": "Taken off support.",
+    "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
+    "evidence.overdue": "{what:due} was due by {until:time}.",
+    "evidence.range": "Range {low:0} to {high:0} %{prescribed:pick yes=, prescribed;no=, by risk: none prescribed}.",
+    "evidence.score": "{score:name} [[{points:trim} points]]{points:pick none=not complete;else=} "
+        "(lowest {lowest:trim}, highest {highest:trim}) at {at:time}, limit {limit:trim}"
+        "[[; missing: {missing:list}]].",
+    "evidence.share": "{percent:0} % of breaths, limit {limit:0} %, over {minutes:minutes}.",
+    "evidence.stale": "{quantity:name} of {at:time} is {age_min:minutes} old.",
+    "evidence.success": "Not acidotic from {since:time} for {hours:hours}.",
+    "evidence.support": "{quantity:name}[[ {value:q}]]{value:pick none= not set: one pressure;else=}, "
+        "{relation} {limit:q}.",
+    "evidence.support_ends": "Support ends at {at:time}.",
+    "evidence.sustained": "{quantity:name} {relation} {limit:q} for {minutes:minutes} since {since:time}"
+        "{counted:pick yes=, by readings taken;no=}, median {median:q}.",
+    "evidence.think_of": "Think of {what}.",
+    "evidence.timing": "{minutes:minutes} after {anchor:pick start=the start;change=the change;"
+        "interface=the new interface;break_end=the break;else=the change} of {anchor_at:time}.",
+    "evidence.twice": "{quantity:name} {first:q} ({first_at:time}) and {second:q} ({second_at:time}), "
+        "both {low:q} to {high:q} or lower.",
+    "evidence.unknown": "{quantity:name} is not known.",
+    "evidence.value": "{quantity:name} {value:qt} at {at:time}, {relation} {limit:q}.",
+    "evidence.venous": "A venous sample.",
+}  # fmt: skip
+
+DUE: Final[dict[str, str]] = {
+    "due.break_end": "The break of {break_at:time} has been open for {hours:hours} while the device ventilates.",
+    "due.ceiling": "No ceiling of care is recorded (support since {started_at:time}).",
+    "due.complete_score": "{score:name} at {gas_at:time} is {lowest:trim} to {highest:trim} (limit {limit:trim}): "
+        "missing {missing:list}.",
+    "due.confirm_arterially": "Venous pH {ph:2} at {gas_at:time}.",
+    "due.gas_after_break": "The break ended at {anchor_at:time}.",
+    "due.gas_after_chain": "Settings changed in {steps} steps, the last at {anchor_at:time}.",
+    "due.gas_after_change": "Settings changed at {anchor_at:time}.",
+    "due.gas_after_start": "Support started at {anchor_at:time}.",
+    "due.gas_reference": "A first gas to compare with: support was running when logging began.",
+    "due.mask_check": "{marker:marker} since {since:time}.",
+    "due.oxygen_review": "{marker:marker} since {since:time}.",
+    "due.probable_break": "A break that nobody logged is probable from {break_at:time}[[ to {end_at:time}]].",
+    "due.reassessment": "After the settings of {anchor_at:time}[[; last looked at {last_at:time}]].",
+    "due.repeat_gas": "The gas of {gas_at:time} was poor: pH {ph:2}[[, {state:" + _STATE + "}]].",
+    "due.skin_check": "Skin under the mask last seen, or support begun, at {last_at:time}.",
+    "due.spo2_recheck": "One reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",
+}  # fmt: skip
+
+CONCERN: Final[dict[str, str]] = {
+    "concern.due_soon": "{what:due} is due by {until:time}.",
+    "concern.ended": "Support ended at {ended_at:time}.",
+    "concern.flag": "{tier:pick escalate=Escalate;concern=Concern;remark=Remark}: {marker:marker}, since "
+        "{since:time}[[; last gas {state:" + _STATE + "}]]{more:pick 0=;1=, one more flag;else=, # more flags}.",
+    "concern.overdue": "{what:due} is overdue since {until:time}.",
+}  # fmt: skip
+
+EXPECTED: Final[dict[str, str]] = {
+    "expected.acts_not_on_co2": "the latest change does not act on CO2",
+    "expected.asynchrony": "asynchrony",
+    "expected.baseline_steady": "the gas of {gas_at:time} is taken as steady",
+    "expected.baseline_too_old": "the gas of {gas_at:time} is too old to expect from",
+    "expected.changed_before": "settings changed at {changed_at:time}, after the last gas",
+    "expected.dead_space_assumed": "dead space taken as {dead_space_ml:0} mL",
+    "expected.leak": "leak",
+    "expected.leak_doubt": "leak makes the ventilation delivered doubtful",
+    "expected.less_dead_space": "less dead space than assumed",
+    "expected.less_production": "less CO2 production",
+    "expected.more_dead_space": "more dead space than assumed",
+    "expected.more_production": "more CO2 production",
+    "expected.needs_support_before": "holds only for a change of settings on running support",
+    "expected.no_baseline": "no gas to expect from",
+    "expected.own_effort": "more effort of the patient's own",
+    "expected.ventilation_not_known":
+        "the ventilation delivered is not known {side:pick before=before the change;after=after the change;else=}",
+    "expected.ventilation_source": "ventilation from {source}",
+    "expected.volume_under_read": "the device reads the volume too low",
+    "expected.within_band": "as expected",
+}  # fmt: skip
+
+LEVERS: Final[dict[str, str]] = {
+    "lever.acidosis": "pH {ph:2} with PaCO2 {paco2_mmHg:gas} at {at:time}.",
+    "lever.event": "{channel:name}[[: {text}]] at {at:time}.",
+    "lever.fio2_at_maximum": "FiO2 is at its highest.",
+    "lever.high_tidal_volume": "Tidal volume {vt_per_kg:1} mL/kg is above {limit:1} mL/kg already.",
+    "lever.hypercapnic_risk": "At hypercapnic risk: no higher than SpO2 {high:0} %.",
+    "lever.hypoxaemia": "Oxygenation is low: EPAP may recruit.",
+    "lever.leak_definition_not_known": "What the device calls leak is not known[[ (now {leak:0} L/min)]].",
+    "lever.leak_first": "Leak first[[: {leak:0} L/min]].",
+    "lever.leak_not_known": "Leak is not known.",
+    "lever.leak_over_limit": "Leak {leak:0} L/min is over {limit:0} L/min.",
+    "lever.leak_within_limit": "Leak {leak:0} L/min is within {limit:0} L/min.",
+    "lever.little_mask_time": "Only {hours:hours} of the last {of_hours:hours} on the mask.",
+    "lever.mask_time_enough": "Time on the mask is enough.",
+    "lever.mask_time_not_known": "Time on the mask is not known: the start is not recorded.",
+    "lever.mode_has_no_rate": "[[{mode}: ]]the mode has no such setting.",
+    "lever.no_acidosis": "No acidosis to act on.",
+    "lever.no_gas": "No gas on support yet.",
+    "lever.no_pressure_support": "CPAP gives no pressure support; two levels would.",
+    "lever.nothing_logged": "Nothing logged lately.",
+    "lever.off_mask_acidotic": "Off the mask since {since:time} with acidosis.",
+    "lever.own_rate_not_known": "The patient's own rate is not known.",
+    "lever.oxygen_above_need": "SpO2 {spo2:0} % at {at:time} is above {low:0} to {high:0} %: less oxygen is needed.",
+    "lever.oxygen_enough": "Oxygenation does not ask for it.",
+    "lever.port_not_cleared": "{epap:trim} cmH2O may not clear the exhalation port (at least {least:trim}).",
+    "lever.present_epap": "EPAP now {epap:trim} cmH2O.",
+    "lever.present_leak": "Leak now {leak:0} L/min[[ ({definition})]][[, limit {limit:0} L/min]].",
+    "lever.present_mask_time": "{hours:hours} of {of_hours:hours} on the mask.",
+    "lever.present_oxygen": "[[FiO2 now {fio2:fraction}. ]][[Oxygen now {o2_flow:trim} L/min.]]",
+    "lever.present_rate": "Backup rate now {rate_set:0}/min[[, own rate {own_rate:0}/min]].",
+    "lever.present_support": "Pressure support now {pressure_support:trim} cmH2O[[ (IPAP {ipap:trim})]].",
+    "lever.present_ti": "Inspiratory time now {ti:trim} s.",
+    "lever.pressures_not_known": "The pressures are not recorded.",
+    "lever.probable_break": "The mask seems off since {since:time}.",
+    "lever.qualified_person_decides": "A qualified person decides.",
+    "lever.raise_ipap_alike": "Raise IPAP alike, or pressure support falls.",
+    "lever.rate_in_reach": "The own rate {own_rate:0}/min is in reach (below {reach:0}/min).",
+    "lever.rate_no_effect": "No effect: the own rate is {own_rate:0}/min.",
+    "lever.review_epap": "EPAP {epap:trim} cmH2O: review before going past {limit:trim}.",
+    "lever.review_ipap": "IPAP {ipap:trim} cmH2O: review before going past {limit:trim}.",
+    "lever.review_ti": "Inspiratory time {ti:trim} s: review before going past {limit:trim}.",
+    "lever.spo2_below_range": "SpO2 {spo2:0} % at {at:time} is below {low:0} to {high:0} %.",
+    "lever.spo2_in_range": "SpO2 {spo2:0} % at {at:time} is within {low:0} to {high:0} %.",
+    "lever.spo2_not_known": "SpO2 is not known.",
+    "lever.ti_may_help": "A longer inspiration may help here.",
+    "lever.ti_not_for_this": "Longer inspiration helps in neuromuscular, chest wall or obesity hypoventilation only.",
+    "lever.traps_air": "In COPD a longer inspiration or a faster rate traps air.",
+    "lever.upper_airway": "EPAP holds the upper airway open.",
+}  # fmt: skip
+
+OTHER: Final[dict[str, str]] = {
+    "copd_failure.risk":
+        "risk {lowest:pick else=#}{known:pick yes=;no= to }{highest}[[, published failure above "
+        "{published_above_percent:0} %]]",
+    "score.is_a_class": "a class of risk, not points",
+}  # fmt: skip
+
+TEMPLATES: Final[dict[str, str]] = EVIDENCE | DUE | CONCERN | EXPECTED | LEVERS | OTHER
