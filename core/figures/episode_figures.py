@@ -10,12 +10,16 @@ from __future__ import annotations
 from dataclasses import replace
 
 from core.judgement.anchors import find_anchors
+from core.judgement.concern import concern
 from core.judgement.context import Context
 from core.judgement.course import with_courses
+from core.judgement.due import due_items
 from core.judgement.expected_co2 import expected
+from core.judgement.flags import evaluate
 from core.judgement.gas_findings import gas_figures
 from core.judgement.leak_trend import leak_figure
 from core.judgement.levers import levers
+from core.judgement.markers.observed import Observed
 from core.judgement.policy import Policy
 from core.judgement.response import judge_responses
 from core.judgement.score_findings import with_scores
@@ -81,6 +85,9 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
     `episode` may hold later happenings: they are cut off first, so nothing later can leak into a figure.
     """
     ctx = judged(episode, as_of, policy)
+    seen = Observed(ctx)
+    flags = evaluate(ctx, seen)
+    due = due_items(ctx, flags, seen)
     return EpisodeFigures(
         episode=episode.key,
         as_of=as_of,
@@ -96,6 +103,9 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
         trends=channel_trends(ctx),
         leak=ctx.leak,
         scores=ctx.scores,
+        flags=flags,
+        due=due,
+        concern=concern(ctx, flags, due),
         levers=levers(ctx),
         expected_co2=expected_co2(ctx),
         policy_hash=policy.hash,
