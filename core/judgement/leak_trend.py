@@ -15,9 +15,9 @@ from core.judgement.context import Context
 from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.shapes import LeakFigure, RatioFigure
 from core.judgement.sustained import Spell, spells
-from core.judgement.trend import channel_trend, rates_at, span_start
+from core.judgement.trend import points_of, rates_at, slope_figure, span_start
 from core.record.episode import Series
-from core.record.instant import MINUTE
+from core.record.instant import MINUTE, Instant
 from core.record.message import Message
 from core.record.samples import Times, Values
 
@@ -29,28 +29,50 @@ LONGEST_SAMPLE = 2 * MINUTE
 
 def leak_definition(ctx: Context) -> str | None:
     """What the device means by leak: "unintentional" or "total"; None where nobody said."""
-    said = ctx.episode.latest_text("leak_definition")
-    return said if said in ("unintentional", "total") else None
+    return _meanings(ctx)[-1].definition
+
+
+@dataclass(frozen=True, slots=True)
+class _Meaning:
+    """What leak means from `start` until the next meaning."""
+
+    start: Instant
+    definition: str | None
+
+
+def _meanings(ctx: Context) -> list[_Meaning]:
+    """The meanings of leak over time. The first that was stated holds for what came before it, too."""
+    said = ctx.episode.text("leak_definition")
+    found: list[_Meaning] = []
+    for t, text in zip(said.t.tolist(), said.v, strict=True):
+        definition = text if text in ("unintentional", "total") else None
+        if not found or found[-1].definition != definition:
+            found.append(_Meaning(t if found else 0, definition))
+    return found or [_Meaning(0, None)]
 
 
 def leak_figure(ctx: Context) -> LeakFigure:
-    """The leak of an episode over the trend's span. Nulls carry their reason."""
+    """The leak of an episode over the trend's span. Nulls carry their reason.
+
+    Where the meaning of leak changed (another device), only what came after counts: two meanings make no trend.
+    """
     series = ctx.episode.number("leak")
-    trend = channel_trend(ctx, "leak")
     if not len(series):
         return LeakFigure(reasons={"median_L_per_min": Message("leak.no_values")})
-    definition = leak_definition(ctx)
-    suspected = probable_breaks(ctx)
-    off = (*ctx.support.breaks, *suspected)
-    near = series.between(span_start(ctx), ctx.as_of)
-    worn = near.cut(~in_any(near.t, off) & np.isfinite(near.v))
-    figure = _level(worn, trend, definition)
+    meaning, suspected = _meanings(ctx)[-1], probable_breaks(ctx)
+    start = max(span_start(ctx), meaning.start)
+    near = series.between(start, ctx.as_of)
+    worn = near.cut(~in_any(near.t, (*ctx.support.breaks, *suspected)) & np.isfinite(near.v))
+    figure = _level(worn, slope_figure(ctx, points_of(ctx, worn), {}), meaning.definition)
     figure = replace(figure, probable_breaks=tuple((b.start, b.end) for b in suspected))
     figure = _with_adjustment(figure, ctx, series)
-    if definition is None:
+    if meaning.start > span_start(ctx):
+        changed = Message("leak.meaning_changed", {"at": meaning.start})
+        figure = replace(figure, reasons={**figure.reasons, "span": changed})
+    if meaning.definition is None:
         reason = Message("leak.definition_not_known")
         return replace(figure, reasons={**figure.reasons, "limit_L_per_min": reason, "minutes_over_limit": reason})
-    return _over(ctx, figure, worn, definition)
+    return _over(ctx, figure, worn, meaning.definition)
 
 
 def _level(worn: Series, trend: RatioFigure, definition: str | None) -> LeakFigure:
@@ -96,17 +118,20 @@ def _last_open(ctx: Context, worn: Series, limit: Values) -> Spell | None:
 
 
 def leak_spells(ctx: Context, n: int, m: int, extra_L_per_min: float = 0.0) -> tuple[Spell, ...]:
-    """Sustained leak over the limit during support: N of M minutes. Empty where the definition is not known.
+    """Sustained leak over the limit during support: N of M minutes, each stretch by what leak meant in it.
 
-    `extra_L_per_min` raises the limit, e.g. to the policy's limit for acting.
+    None where the meaning is not known. `extra_L_per_min` raises the limit, e.g. to the policy's limit for acting.
     """
-    definition = leak_definition(ctx)
-    if definition is None:
-        return ()
     series = ctx.episode.number("leak").machine
     worn = series.cut(~in_any(series.t, (*ctx.support.breaks, *probable_breaks(ctx))))
-    limit, _ = limits_at(ctx, worn.t, definition)
-    return spells(worn.t, worn.v, limit + extra_L_per_min, n, m)
+    meanings = _meanings(ctx)
+    found: list[Spell] = []
+    for meaning, following in zip(meanings, (*meanings[1:], None), strict=True):
+        if meaning.definition is not None:
+            part = worn.between(meaning.start, ctx.as_of if following is None else following.start - 1)
+            limit, _ = limits_at(ctx, part.t, meaning.definition)
+            found += spells(part.t, part.v, limit + extra_L_per_min, n, m)
+    return tuple(found)
 
 
 def limits_at(ctx: Context, times: Times, definition: str) -> tuple[Values, bool]:

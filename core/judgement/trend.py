@@ -225,7 +225,12 @@ def channel_trend(ctx: Context, channel: str) -> RatioFigure:
         if spots.within(start, ctx.as_of).t.size >= 2 or not len(machine):
             return slope_figure(ctx, spots, {})
         return slope_figure(ctx, _device_points(ctx, machine), {})
-    return slope_figure(ctx, _together(spots, _device_points(ctx, series.machine)), {})
+    return slope_figure(ctx, points_of(ctx, series), {})
+
+
+def points_of(ctx: Context, series: Series) -> Points:
+    """The points of a series: what people logged, and the 15-min medians of what a machine wrote in the span."""
+    return _together(Points(series.spots.t, series.spots.v), _device_points(ctx, series.machine))
 
 
 def _device_points(ctx: Context, series: Series) -> Points:
@@ -247,6 +252,6 @@ def _vte_per_kg(ctx: Context) -> RatioFigure:
         return slope_figure(ctx, NO_POINTS, {"latest": reason})
     series = _finite(ctx.episode.number("vte")).between(span_start(ctx), ctx.as_of)
     series = series.cut(~in_any(series.t, (*ctx.support.breaks, *probable_breaks(ctx))))
-    points = _together(Points(series.spots.t, series.spots.v), _device_points(ctx, series.machine))
+    points = points_of(ctx, series)
     caveat = Message("caveat.tidal_volume_modelled_on_mask")
     return slope_figure(ctx, Points(points.t, points.v / pbw), {}, caveat)

@@ -106,5 +106,36 @@ def test_a_logged_break_is_not_probable_and_an_open_one_stays_open() -> None:
     assert found.minutes(at("02:30")) * MINUTE == 30 * MINUTE
 
 
+def test_another_meaning_of_leak_makes_no_common_trend() -> None:
+    log = f"""{BEGIN} leak_definition unintentional
+        03:00 leak_definition total
+        device leak 01:00 02:00 20 20
+        device leak 02:00 03:00 45 45
+        device leak 03:00 05:00 48 48"""
+    ctx = context(log, "05:00")
+    leak = leak_figure(ctx)
+    assert leak.definition == "total"
+    assert leak.median_L_per_min == 48
+    assert leak.slope_L_per_min_per_h == 0
+    assert leak.reasons["span"].values["at"] == at("03:00")
+    assert [s.start for s in leak_spells(ctx, 10, 12)] == [at("02:00")]
+
+
+def test_a_meaning_stated_late_holds_for_what_came_before() -> None:
+    log = f"{BEGIN}\n03:00 leak_definition unintentional\ndevice leak 01:00 04:00 45 45"
+    leak = leak_figure(context(log, "04:00"))
+    assert leak.minutes_over_limit == 180
+    assert "span" not in leak.reasons
+
+
+def test_the_leak_of_a_break_is_no_leak() -> None:
+    log = f"{BEGIN} leak_definition unintentional\n02:00 break_start\n03:00 break_end\n"
+    log += "device leak 01:00 02:00 20 20\n"
+    leak = leak_figure(context(log + "device leak 02:00 03:00 90 90\ndevice leak 03:00 04:00 20 20", "04:00"))
+    assert leak.median_L_per_min == 20
+    assert leak.slope_L_per_min_per_h == 0
+    assert leak.minutes_over_limit == 0
+
+
 def test_no_leak_at_all() -> None:
     assert leak_figure(context(BEGIN, "02:00")).reasons["median_L_per_min"].key == "leak.no_values"
