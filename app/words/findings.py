@@ -31,7 +31,7 @@ GAS: Final[dict[str, str]] = {
     "gas.negative_gradient":
         "The A-a gradient would be {aa:0} mmHg, which cannot be: FiO2 {fio2:fraction} or a pressure is wrong.",
     "gas.not_metabolic": "only of a metabolic disturbance",
-    "gas.temperature_correction_off": "reported as measured at 37 \N{DEGREE SIGN}C; the ward corrects for no temperature",
+    "gas.temperature_correction_off": "as measured at 37 \N{DEGREE SIGN}C: the ward corrects for no temperature",
     "gas.no_paco2": "PCO2 not reported",
     "gas.no_ph": "pH not reported",
     "gas.saturation_differs":
@@ -180,4 +180,22 @@ SCORES: Final[dict[str, str]] = {
     "tidal_volume.void": "tidal volume void: the mask was off",
 }  # fmt: skip
 
-TEMPLATES: Final[dict[str, str]] = SUPPORT | GAS | COURSE | TRENDS | UNDEFINED | SCORES
+DERIVED: Final[dict[str, str]] = {
+    "caveat.berlin_grades_on_mask":
+        "on a mask the 2012 definition grades mild only: beyond it the band of P/F is shown",
+    "caveat.imputed_by": "imputed from SpO2, {method} method; the three methods differ by a severity class",
+    "caveat.no_adult_cut_off_on_mask": "no adult cut-off exists on a mask",
+    "caveat.oxygenation_criterion_only":
+        "oxygenation criterion alone; timing, imaging and the origin of oedema are for a clinician",
+    "caveat.square_wave_no_leak": "assumes square pressures without leak",
+    "oxygenation.needs_a_pressure": "needs an expiratory pressure",
+    "oxygenation.no_arterial_gas": "no arterial gas on support",
+    "oxygenation.no_fixed_pressure": "no fixed pressures[[ in {mode}]]",
+    "oxygenation.off_support": "off support at that time",
+    "ventilation.no_gas_on_support": "no gas with a PCO2 on support",
+    "ventilation.no_rate": "respiratory rate not known at that time",
+    "ventilation.no_tidal_volume": "no tidal volume measured",
+    "ventilation.no_wished_paco2": "the usual PaCO2 is not recorded",
+}  # fmt: skip
+
+TEMPLATES: Final[dict[str, str]] = DERIVED | SUPPORT | GAS | COURSE | TRENDS | UNDEFINED | SCORES

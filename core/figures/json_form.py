@@ -9,7 +9,8 @@ from collections.abc import Callable, Mapping
 from dataclasses import fields, is_dataclass
 from typing import Any
 
-from core.judgement.shapes import EpisodeFigures, LeakFigure, RatioFigure
+from core.judgement.gas_reading import read
+from core.judgement.shapes import EpisodeFigures, GasFigure, LeakFigure, RatioFigure
 from core.record.channels import CHANNELS, Kind
 from core.record.local_time import zoned_iso
 from core.record.message import Message
@@ -20,7 +21,7 @@ Wording = Callable[[Message], str]
 _INSTANTS = frozenset(
     {"at", "as_of", "since", "ended_at", "last_change_at", "break_since", "anchor_at", "first_at", "window_from",
      "window_to", "baseline_at", "headline_gas_at", "superseded_at", "span_from", "seen_at", "settled_at",
-     "due_from", "due_until", "done_at", "observed_at"}
+     "due_from", "due_until", "done_at", "observed_at", "latest_at", "over_since", "adjusted_at"}
 )  # fmt: skip
 _INTERNAL = frozenset({"reasons", "concern", "ids"})
 
@@ -36,7 +37,7 @@ def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
         "profile": {k: form.fact(k, v) for k, v in figures.profile.items()},
         "support": form.plain(figures.support),
         "responses": [form.plain(r) for r in figures.responses],
-        "gases": [form.plain(g) for g in figures.gases],
+        "gases": [form.gas(g, figures.profile.get("age")) for g in figures.gases],
         "ratios": {
             "pf": form.ratio(figures.pf, "_mmHg", "_mmHg"),
             "sf": form.ratio(figures.sf, "", ""),
@@ -44,6 +45,8 @@ def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
         },
         "trends": {k: form.plain(v) for k, v in figures.trends.items()},
         "leak": form.leak(figures.leak),
+        "oxygenation": form.plain(figures.oxygenation),
+        "ventilation": form.plain(figures.ventilation),
         "scores": {k: form.plain(v) for k, v in figures.scores.items()},
         "flags": [form.plain(f) for f in figures.flags],
         "due": [form.due(form.plain(d)) for d in figures.due],
@@ -99,9 +102,13 @@ class _Form:
         if isinstance(value, Mapping):
             return {str(k): self.value(str(k), v) for k, v in value.items()}
         if isinstance(value, tuple):
-            inner = "at" if name == "t" else ""
+            inner = "at" if name in ("t", "at", "probable_breaks") else ""
             return [self.value(inner, v) for v in value]
         return value
+
+    def gas(self, gas: GasFigure, age: Any) -> Json:
+        """A gas, and under `reading` what it says in words and what its rules make one expect."""
+        return self.plain(gas) | {"reading": self.plain(read(gas, age))}
 
     def ratio(self, ratio: RatioFigure, latest: str, slope: str) -> Json:
         """A ratio with its unit in the keys, as the format names them."""

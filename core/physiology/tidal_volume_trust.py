@@ -80,13 +80,15 @@ def unintentional_leak(leak: ArrayLike, definition: str, port: ArrayLike = np.na
 
 
 def trust(
-    vte: ArrayLike, unintentional: ArrayLike, ti: ArrayLike = np.nan, void: ArrayLike = False
-) -> NDArray[np.int8]:
+    vte: ArrayLike, unintentional: ArrayLike, ti: ArrayLike = np.nan, void: ArrayLike = False,
+    limit: float = LEAK_LIMIT,
+) -> NDArray[np.int8]:  # fmt: skip
     """Codes of `Trust` for tidal volumes (mL) with the unintentional leak (L/min) of the same minutes.
 
     Args:
-        ti: inspiratory time, s; where unknown only the 30 L/min limit speaks.
+        ti: inspiratory time, s; where unknown only the leak limit speaks.
         void: True in a probable break or where the leak stands at the device's ceiling.
+        limit: unintentional leak above which a volume is doubtful, L/min.
 
     >>> trust([500.0, 400.0, 400.0, 400.0], [10.0, 31.0, float("nan"), 28.0], [1.0, 1.0, 1.0, 1.0]).tolist()
     [1, 2, 0, 2]
@@ -98,7 +100,7 @@ def trust(
         np.asarray(void, np.bool_),
     )
     share: Values = np.asarray(leaked_share(volume, leak, time))
-    too_large = (leak > LEAK_LIMIT) | (share > LEAK_SHARE_LIMIT)
+    too_large = (leak > limit) | (share > LEAK_SHARE_LIMIT)
     unknown = np.isnan(leak) | np.isnan(volume)
     codes = np.select(
         [empty | (volume <= 0.0), unknown, too_large],
@@ -108,10 +110,14 @@ def trust(
     return np.asarray(codes, dtype=np.int8)
 
 
-def why_doubtful(code: Trust) -> Message | None:
+def why_doubtful(code: Trust, limit: float = LEAK_LIMIT) -> Message | None:
     """What to say beside a figure made from such a tidal volume; None where it is trusted.
+
+    `limit` is the one that `trust` was given.
 
     >>> why_doubtful(Trust.DOUBTFUL).key
     'tidal_volume.leak_too_large'
     """
+    if code is Trust.DOUBTFUL and limit != LEAK_LIMIT:
+        return Message("tidal_volume.leak_too_large", {"limit": limit, "share": LEAK_SHARE_LIMIT})
     return REASONS.get(code)
