@@ -121,7 +121,7 @@ class EntryRows:
     def _leak_definitions(self) -> list[EntryRow]:
         """A definition of leak that the file's leak rows state becomes an entry where it is not yet in force."""
         out: list[EntryRow] = []
-        uses = sorted(self._leak_uses.items(), key=lambda item: item[1].first)
+        uses = sorted(self._leak_uses.items(), key=lambda item: (item[1].first, item[1].line))
         before: dict[str, tuple[str, LeakUse]] = {}
         for (episode, definition), use in uses:
             earlier = before.get(episode)

@@ -34,7 +34,7 @@ class _Series:
             return np.empty(0, np.int64), np.empty(0), np.empty(0, np.int32)
         t, v, lines = np.concatenate(self.t), np.concatenate(self.v), np.concatenate(self.lines)
         if not (t[1:] > t[:-1]).all():
-            order = np.argsort(t, kind="stable")
+            order = np.lexsort((lines, t))
             t, v, lines = t[order], v[order], lines[order]
         return t, v, lines
 
@@ -96,7 +96,7 @@ class SampleSpool:
         if use is None:
             self.leak_uses[(episode, definition)] = LeakUse(first, last, line)
             return
-        if first < use.first:
+        if (first, line) < (use.first, use.line):
             use.first, use.line = first, line
         use.last = max(use.last, last)
 
