@@ -11,6 +11,7 @@ from types import MappingProxyType
 from typing import Final
 
 from core.figures.catalogue_breathing import COURSE, SCORES, VENTILATION
+from core.figures.catalogue_course import LEAK, MEASURED, SUPPORT, TRENDS
 from core.figures.catalogue_entry import CERTAINTIES, Certainty, FigureEntry
 from core.figures.catalogue_gases import ACID_BASE, COMPENSATION
 from core.figures.catalogue_oxygen import OXYGENATION, SATURATION
@@ -22,7 +23,11 @@ SECTIONS: Final[Mapping[str, tuple[FigureEntry, ...]]] = MappingProxyType(
         "Oxygenation": OXYGENATION,
         "Saturation": SATURATION,
         "Ventilation": VENTILATION,
+        "Measured by the device, checked and expected": MEASURED,
         "Expected course of PaCO2": COURSE,
+        "Time on support": SUPPORT,
+        "Trends": TRENDS,
+        "Leak": LEAK,
         "Scores": SCORES,
     }
 )

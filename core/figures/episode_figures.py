@@ -20,12 +20,15 @@ from core.judgement.gas_findings import gas_figures
 from core.judgement.leak_trend import leak_figure
 from core.judgement.levers import levers
 from core.judgement.markers.observed import Observed
+from core.judgement.oxygenation_findings import oxygenation_figure
 from core.judgement.policy import Policy
 from core.judgement.response import judge_responses
 from core.judgement.score_findings import with_scores
+from core.judgement.score_inputs import barriers
 from core.judgement.shapes import EpisodeFigures, ExpectedCO2, RatioFigure
 from core.judgement.support_findings import support_figure
 from core.judgement.trend import channel_trend, ratio_trends
+from core.judgement.ventilation_findings import ventilation_figure
 from core.record.channels import Group, Kind, by_group
 from core.record.episode import Episode
 from core.record.instant import Instant
@@ -88,6 +91,7 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
     seen = Observed(ctx)
     flags = evaluate(ctx, seen)
     due = due_items(ctx, flags, seen)
+    walls = barriers(tuple(step.at for a in ctx.anchors for step in a.steps), ctx.support)
     return EpisodeFigures(
         episode=episode.key,
         as_of=as_of,
@@ -108,6 +112,8 @@ def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> Episode
         concern=concern(ctx, flags, due),
         levers=levers(ctx),
         expected_co2=expected_co2(ctx),
+        oxygenation=oxygenation_figure(ctx, walls),
+        ventilation=ventilation_figure(ctx, walls),
         policy_hash=policy.hash,
     )
 
