@@ -101,10 +101,13 @@ def _figure(met: _Met, name: str, known: History | None, ctx: Context) -> FlagFi
 
 
 def _beside(rule: MarkerRule, spell: Spell, ctx: Context) -> tuple[Message, ...]:
-    """What changes the words and not the evidence: outside the population, a ceiling of care."""
+    """What is said beside the evidence: outside the population, nothing newer for long, a ceiling of care."""
     said: list[Message] = []
     if spell.outside_population:
         said.append(Message("evidence.outside_population", {"population": rule.population}))
+    newest = max((int(m.values.get(k) or 0) for m in spell.evidence for k in ("at", "second_at")), default=0)
+    if spell.until is None and 0 < newest < ctx.as_of - rule.stale_min * MINUTE:
+        said.append(Message("evidence.stale", {"at": newest, "minutes": (ctx.as_of - newest) // MINUTE}))
     ceiling = ctx.episode.latest_text("ceiling_of_care")
     if rule.tier == "escalate" and ceiling not in (None, "full", "not recorded"):
         said.append(Message("evidence.ceiling", {"ceiling": ceiling}))

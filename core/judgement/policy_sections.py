@@ -152,7 +152,7 @@ class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     """One marker: whether it is on, how strong, in which group, whom it was validated in, and its numbers.
 
     `outside`: what happens outside the population: silent, or a remark that says so. `gap_min`: met again within
-    so many minutes is the same flag. `limits` are plain numbers (their names carry the unit), `pressures` gas
+    so many minutes is the same flag. `stale_min`: what an open flag rests on is stale when older, and says so. `limits` are plain numbers (their names carry the unit), `pressures` gas
     pressures in both forms.
     """
 
@@ -162,6 +162,7 @@ class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     population: Population
     outside: Literal["silent", "remark"] = "silent"
     gap_min: float = 0.0
+    stale_min: float = 360.0
     source: str
     sure: Sure
     limits: dict[str, float] = {}

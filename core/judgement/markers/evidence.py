@@ -23,19 +23,20 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "evidence.value": ("quantity", "value", "relation", "limit", "limit_kpa", "at", "text"),
         "evidence.change": ("quantity", "before", "before_at", "after", "at", "change", "noise", "direction"),
         "evidence.timing": ("anchor", "anchor_at", "minutes"),
-        "evidence.sustained": ("quantity", "relation", "limit", "minutes", "since", "median", "counted"),
+        "evidence.sustained": ("quantity", "relation", "limit", "minutes", "since", "at", "median"),
         "evidence.twice": ("quantity", "first", "first_at", "second", "second_at", "low", "high"),
         "evidence.score": ("score", "points", "lowest", "highest", "limit", "at", "missing"),
         "evidence.failed_percent": ("score", "points", "percent"),
+        "evidence.score_rise": ("score", "before", "before_at", "lowest", "highest", "at"),
+        "evidence.not_trusted": ("quantity", "since", "at", "minutes"),
         "evidence.support": ("quantity", "value", "relation", "limit"),
         "evidence.no_reason_logged": (),
         "evidence.event": ("event", "at", "text"),
         "evidence.hours": ("what", "hours", "limit"),
         "evidence.share": ("percent", "limit", "minutes", "breaks"),
         "evidence.unknown": ("quantity",),
-        "evidence.stale": ("quantity", "at", "age_min"),
+        "evidence.stale": ("at", "minutes"),
         "evidence.gas_doubt": ("doubt", "at"),
-        "evidence.range": ("low", "high", "prescribed"),
         "evidence.off_support": ("at",),
         "evidence.venous": ("at",),
         "evidence.after_beta_agonist": ("at", "text"),
@@ -102,11 +103,11 @@ def timing(anchor: str, anchor_at: Instant, minutes: float) -> Message:
 
 
 def sustained(
-    quantity: str, relation: str, limit: float, minutes: float, since: Instant, median: float, counted: bool = False
+    quantity: str, relation: str, limit: float, minutes: float, since: Instant, at: Instant, median: float
 ) -> Message:
-    """A crossing that lasted. `median` of the values past the limit; `counted` where people took them."""
+    """A crossing that lasted from `since`; `at` is its newest value, `median` that of its values."""
     values: dict[str, Value] = {"quantity": quantity, "relation": relation, "limit": limit, "minutes": minutes,
-              "since": since, "median": median, "counted": counted}  # fmt: skip
+              "since": since, "at": at, "median": median}  # fmt: skip
     return Message("evidence.sustained", values)
 
 

@@ -39,6 +39,7 @@ def _leak(seen: Observed, extra: float) -> list[Spell]:
     for s in crossings(leak.t, leak.v, limit, n, m):
         i, j = np.searchsorted(leak.t, [s.start, s.end if s.end is not None else leak.t[-1] + 1])
         median = float(np.median(leak.v[i:j]))
-        told = say.sustained("leak", say.ABOVE, round(float(limit[j - 1]), 1), s.minutes, s.start, median)
+        newest = int(leak.t[j - 1])
+        told = say.sustained("leak", say.ABOVE, round(float(limit[j - 1]), 1), s.minutes, s.start, newest, median)
         found.append(Spell(s.start, s.end, (told,)))
     return found

@@ -17,7 +17,6 @@ from core.judgement.policy_sections import MarkerRule
 from core.judgement.sustained import spells as crossings
 from core.record.episode import Series
 from core.record.instant import MINUTE
-from core.record.message import Message
 from core.record.samples import Flags, Values
 
 
@@ -75,7 +74,7 @@ def _by_machine(rule: MarkerRule, spo2: Series, limit: Values, relation: str) ->
         v, lim = spo2.v[i:j], limit[i:j]
         past = v[v < lim] if relation == say.BELOW else v[v > lim]
         median = float(np.median(past)) if past.size else float(np.median(v))
-        told = say.sustained("spo2", relation, round(float(lim[-1]), 3), s.minutes, s.start, median)
+        told = say.sustained("spo2", relation, round(float(lim[-1]), 3), s.minutes, s.start, int(spo2.t[j - 1]), median)
         spells.append(Spell(s.start, s.end, (told,)))
     return spells
 
@@ -121,8 +120,3 @@ def single_out_of_range(seen: Observed) -> tuple[int, float, float, float] | Non
     if not out[-1] or (out.size > 1 and out[0] and spo2.spot[-2]):
         return None
     return int(spo2.t[-1]), float(spo2.v[-1]), float(low[-1]), float(high[-1])
-
-
-def range_told(low: float, high: float, prescribed: bool) -> Message:
-    """The range in force."""
-    return Message("evidence.range", {"low": low, "high": high, "prescribed": prescribed})

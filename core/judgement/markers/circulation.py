@@ -1,0 +1,154 @@
+"""Circulation: low pressure, lactate, arrest, and a sudden fall after the airway pressure was raised."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable, Iterator
+
+import numpy as np
+
+from core.judgement.markers import evidence as say
+from core.judgement.markers.observed import Observed
+from core.judgement.markers.spells import Point, Spell, from_points, from_runs, held, united
+from core.judgement.policy_sections import MarkerRule
+from core.judgement.shapes import GasFigure
+from core.judgement.sustained import spells as crossings
+from core.record.instant import HOUR, MINUTE, Instant
+from core.record.message import Message
+
+BETA_AGONIST = re.compile(
+    r"salbutamol|albuterol|terbutaline|formoterol|adrenaline|epinephrine|nebuli[sz]er|\bneb\b", re.IGNORECASE
+)
+RAISED = frozenset({"ipap", "epap", "cpap", "pressure_support"})
+
+
+def sbp_below_90(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """Systolic pressure below 90 mmHg; ends once it has recovered by a margin."""
+    sbp = seen.series("sbp")
+    limit = rule.limits["sbp"]
+    low = held(sbp.v < limit, sbp.v >= rule.limits["clear"])
+
+    def told(_first: int, last: int) -> tuple[Message, ...]:
+        lowest = last - int(np.argmax((sbp.v < limit)[last::-1]))
+        return (say.value_is("sbp", float(sbp.v[lowest]), say.BELOW, limit, int(sbp.t[lowest])),)
+
+    return from_runs(sbp.t, low, told)
+
+
+def lactate_above_2(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """Lactate above 2 mmol/L on any sample."""
+    return from_points(_lactate(seen, rule))
+
+
+def lactate_above_4(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """Lactate above 4 mmol/L on any sample."""
+    return from_points(_lactate(seen, rule))
+
+
+def _lactate(seen: Observed, rule: MarkerRule) -> Iterator[Point]:
+    limit = rule.limits["lactate"]
+    for gas in seen.ctx.gases:
+        if gas.lactate_mmol_L is not None:
+            told = say.value_is("lactate", gas.lactate_mmol_L, say.ABOVE, limit, gas.at)
+            yield Point(gas.at, gas.lactate_mmol_L > limit, (told, *_after_beta_agonist(seen, rule, gas)))
+
+
+def lactate_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """Lactate above 2 mmol/L and higher than on the sample before it."""
+    points = []
+    before: GasFigure | None = None
+    for gas in seen.ctx.gases:
+        now = gas.lactate_mmol_L
+        if now is None:
+            continue
+        then = before.lactate_mmol_L if before is not None else None
+        if before is not None and then is not None:
+            rise = round(now - then - rule.limits["rise"], 6) >= 0
+            told = (say.changed("lactate", then, before.at, now, gas.at), *_after_beta_agonist(seen, rule, gas))
+            points.append(Point(gas.at, rise and now > rule.limits["lactate"], told))
+        before = gas
+    return from_points(points)
+
+
+def _after_beta_agonist(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tuple[Message, ...]:
+    """A nebulised beta-agonist in the hours before raises lactate by itself: say so."""
+    drugs = seen.episode.text("drug")
+    since = gas.at - int(rule.limits["beta_agonist_h"] * HOUR)
+    for at, text in zip(reversed(drugs.t.tolist()), reversed(drugs.v), strict=True):
+        if since <= at <= gas.at and BETA_AGONIST.search(text):
+            return (Message("evidence.after_beta_agonist", {"at": at, "text": text}),)
+    return ()
+
+
+def arrest(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
+    """An arrest was logged: support ends. It stands until support is logged again."""
+    events = seen.episode.text("arrest")
+    found = []
+    for at, text in zip(events.t.tolist(), events.v, strict=True):
+        resumed = [t for t in seen.settings.moments if t > at and not seen.settings.at(t).is_off]
+        resumed += [int(t) for t in seen.episode.text("mask_on").t if t > at]
+        told = (Message("evidence.event", {"event": "arrest", "at": at, "text": text}),
+                Message("evidence.support_ends", {"at": at}))  # fmt: skip
+        found.append(Spell(at, min(resumed, default=None), told))
+    return united(found)
+
+
+def raised_pressures(seen: Observed) -> list[Instant]:
+    """When a pressure was raised on the patient."""
+    found = set()
+    for response in seen.ctx.responses:
+        for step in response.steps:
+            numbers = isinstance(step.before, (int, float)) and isinstance(step.after, (int, float))
+            if step.channel in RAISED and numbers and float(step.after or 0) > float(step.before or 0):
+                found.add(step.at)
+    return sorted(found)
+
+
+def spo2_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """A sudden fall of SpO2, to below its range, within the hour after a pressure was raised."""
+    spo2 = seen.series("spo2").machine
+    found = []
+    for at in seen.once(raised_pressures):
+        before = spo2.between(at - 15 * MINUTE, at)
+        after = spo2.between(at, seen.as_of)
+        if not len(before) or not len(after):
+            continue
+        median = float(np.median(before.v))
+        low, _ = seen.targets(after.t)
+        limit = np.minimum(median - rule.limits["points"] + 1e-9, low)
+        if not (after.v < limit).any():
+            continue
+        after_worn = after.cut(~seen.off_mask(after.t))
+        lim = limit[~seen.off_mask(after.t)]
+        n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
+        for s in crossings(after_worn.t, after_worn.v, lim, n, m, below=True):
+            if s.start <= at + int(rule.limits["within_min"] * MINUTE):
+                i, j = np.searchsorted(after.t, [s.start, s.end if s.end is not None else after.t[-1] + 1])
+                lowest = i + int(np.argmin(after.v[i:j]))
+                told = say.changed("spo2", median, at, float(after.v[lowest]), int(after.t[lowest]))
+                found.append(Spell(s.start, s.end, (told, *_after_raise(at, s.start))))
+    return united(found)
+
+
+def sbp_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """A fall of systolic pressure within the hour after a pressure was raised."""
+    sbp = seen.series("sbp")
+    found = []
+    for at in seen.once(raised_pressures):
+        i = sbp.last_at_or_before(at)
+        if i < 0 or at - int(sbp.t[i]) > rule.limits["before_h"] * HOUR:
+            continue
+        then = float(sbp.v[i])
+        points = []
+        for t, v in zip(sbp.t[i + 1 :].tolist(), sbp.v[i + 1 :].tolist(), strict=True):
+            fell = then - v >= rule.limits["sbp_fall"]
+            late = t > at + int(rule.limits["within_min"] * MINUTE)
+            told = (say.changed("sbp", then, int(sbp.t[i]), v, t), *_after_raise(at, t))
+            points.append(Point(t, None if fell and late else fell, told))
+        found += from_points(points)
+    return united(found)
+
+
+def _after_raise(raised_at: Instant, at: Instant) -> tuple[Message, ...]:
+    return (say.timing("pressure raised", raised_at, (at - raised_at) // MINUTE),
+            Message("evidence.think_of", {"what": "pneumothorax"}))  # fmt: skip

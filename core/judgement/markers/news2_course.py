@@ -1,0 +1,113 @@
+"""NEWS2 over the record: bounds at every set of observations, and a rise over the patient's own low.
+
+The points are those of `scores_news2`, for arrays. A set is three or more of the observed values at one moment; a
+value up to the policy's freshness before it fills in, and what is missing bounds the points and is never normal.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+import numpy as np
+
+from core.judgement.markers.observed import Observed
+from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.policy_sections import MarkerRule
+from core.judgement.scores_binning import half_up_array
+from core.judgement.scores_news2 import ACVPU, BINS, SCALE_1, SCALE_2_ON_AIR, SCALE_2_ON_OXYGEN, Bins
+from core.record.episode import Series
+from core.record.instant import HOUR, MINUTE
+from core.record.message import Message, Value
+from core.record.samples import Times, Values
+
+OBSERVED = ("rr", "spo2", "hr", "sbp", "temp")
+
+
+@dataclass(frozen=True, slots=True)
+class Course:
+    """NEWS2 at each set of observations, shapes (n,): the least and the most points it can be."""
+
+    t: Times
+    low: Values
+    high: Values
+
+
+def news2_course(seen: Observed) -> Course:
+    """NEWS2 at every set of observations that people took."""
+    spots = {c: seen.series(c).spots for c in OBSERVED}
+    moments, counts = np.unique(np.concatenate([s.t for s in spots.values()]), return_counts=True)
+    t = moments[counts >= 3]
+    low, high = np.zeros(t.shape), np.zeros(t.shape)
+    oxygen = _oxygen(seen, t)
+    for name in ("rr", "hr", "sbp", "temp"):
+        decimals, bins = BINS[name]
+        _add(low, high, _points(bins, _fresh(seen, spots[name], t), decimals), 0, max(p for _, p in bins))
+    spo2 = _fresh(seen, spots["spo2"], t)
+    if seen.episode.latest_text("spo2_scale") == "2":
+        air, given = _points(SCALE_2_ON_AIR, spo2, 0), _points(SCALE_2_ON_OXYGEN, spo2, 0)
+        low += np.where(np.isnan(spo2), 0, np.where(oxygen == 1, given, air))
+        high += np.where(np.isnan(spo2), 3, np.where(oxygen == 0, air, given))
+    else:
+        _add(low, high, _points(SCALE_1, spo2, 0), 0, 3)
+    low += np.where(oxygen == 1, 2, 0)
+    high += np.where(oxygen == 0, 0, 2)
+    _add(low, high, _consciousness(seen, t), 0, 3)
+    return Course(t, low, high)
+
+
+def _add(low: Values, high: Values, points: Values, least: float, most: float) -> None:
+    missing = np.isnan(points)
+    low += np.where(missing, least, points)
+    high += np.where(missing, most, points)
+
+
+def _fresh(seen: Observed, spots: Series, t: Times) -> Values:
+    if not len(spots):
+        return np.full(t.shape, np.nan)
+    i = np.searchsorted(spots.t, t, side="right") - 1
+    k = np.maximum(i, 0)
+    fresh = (i >= 0) & (t - spots.t[k] <= int(seen.policy.freshness.vitals_min.value * MINUTE))
+    return np.where(fresh, spots.v[k], np.nan)
+
+
+def _points(bins: Bins, values: Values, decimals: int) -> Values:
+    edges = np.array([upper for upper, _ in bins[:-1]]) + 1e-9
+    points = np.array([p for _, p in bins], np.float64)
+    rounded = half_up_array(values, decimals)
+    return np.where(np.isnan(values), np.nan, points[np.searchsorted(edges, np.nan_to_num(rounded), side="left")])
+
+
+def _oxygen(seen: Observed, t: Times) -> Values:
+    """1 on oxygen, 0 on air, NaN where neither FiO2 nor a flow is known."""
+    fio2, flow = seen.settings.fio2.on(t), seen.settings.o2_flow.on(t)
+    by_fraction = np.where(np.isnan(fio2), np.where(flow == 0, 0.0, np.nan), (fio2 > 0.21 + 1e-9).astype(np.float64))
+    return np.where(flow > 0, 1.0, by_fraction)
+
+
+def _consciousness(seen: Observed, t: Times) -> Values:
+    words = seen.episode.text("acvpu")
+    points = np.array([np.nan, *(float(ACVPU.get(w, 0)) for w in words.v)])
+    i = np.searchsorted(words.t, t, side="right")
+    at = np.concatenate(([0], words.t))[i]
+    fresh = t - at <= int(seen.policy.freshness.gcs_min.value * MINUTE)
+    return np.where((i > 0) & fresh, points[i], np.nan)
+
+
+def news2_rise(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """NEWS2 2 or more over the patient's own low of the last 4 h, whatever is missing."""
+    course = seen.once(news2_course)
+    span, rise = int(rule.limits["within_h"] * HOUR), rule.limits["points"]
+    points = []
+    for k in range(1, course.t.size):
+        j = int(np.searchsorted(course.t, course.t[k] - span))
+        if j == k:
+            continue
+        own = j + int(np.argmin(course.high[j:k]))
+        met = bool(course.low[k] - course.high[own] >= rise)
+        told: dict[str, Value] = {
+            "score": "news2", "before": float(course.high[own]), "before_at": int(course.t[own]),
+            "lowest": float(course.low[k]), "highest": float(course.high[k]), "at": int(course.t[k]),
+        }  # fmt: skip
+        points.append(Point(int(course.t[k]), met, (Message("evidence.score_rise", told),)))
+    return from_points(points)
