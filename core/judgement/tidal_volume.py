@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from statistics import median
 from typing import Final
 
 import numpy as np
@@ -75,11 +76,14 @@ def newest(ctx: Context, channel: str) -> Instant | None:
     return int(worn.t[-1]) if len(worn) else None
 
 
-def measured_at(ctx: Context, channel: str, at: Instant, walls: Walls, rate: float | None = None) -> Measured | None:
+def measured_at(
+    ctx: Context, channel: str, at: Instant, walls: Walls, *, rate: float | None = None, code: Trust | None = None
+) -> Measured | None:
     """A volume of the quarter of an hour up to a moment, not reaching back across an anchor or a break.
 
     The median of the device's samples; else the newest value that a person logged in it. A value at the very
-    moment of a wall counts as before it. `channel` is `vte`, or `mv` with the `rate` that makes a volume of it.
+    moment of a wall counts as before it. `channel` is `vte`, or `mv` with the `rate` that makes a volume of it;
+    `code`: the trust of the tidal volumes of the same minutes, where it is known.
     """
     i = int(np.searchsorted(walls, at, side="left"))
     low = max(at - _median_span(ctx), int(walls[i - 1]) + 1 if i > 0 else -(2**62))
@@ -89,10 +93,12 @@ def measured_at(ctx: Context, channel: str, at: Instant, walls: Walls, rate: flo
         part = near.spots.cut(slice(-1, None))
     if not len(part):
         return None
-    volume = part.v if channel == "vte" else part.v * 1000.0 / (rate or np.nan)
-    code = _commonest(codes_of(ctx, part.t, volume, part.spot))
+    if code is None:
+        volume = part.v if channel == "vte" else part.v * 1000.0 / (rate or np.nan)
+        code = _commonest(codes_of(ctx, part.t, volume, part.spot))
     limit = ctx.policy.leak.doubt_tidal_volume_above_L_per_min.value
-    return Measured(FigureInput(float(np.median(part.v)), int(part.t[-1])), code, why_doubtful(code, limit))
+    middle = float(median(part.v.tolist()))
+    return Measured(FigureInput(middle, int(part.t[-1])), code, why_doubtful(code, limit))
 
 
 def _commonest(codes: NDArray[np.int8]) -> Trust:

@@ -107,7 +107,8 @@ def _breathing(ctx: Context, at: Instant | None, walls: Walls) -> _Breathing:
     found = rate_at(ctx, at, walls)
     rate = FigureInput(found.value, found.at)
     volume = measured_at(ctx, "vte", at, walls)
-    return _Breathing(at, rate, volume, measured_at(ctx, "mv", at, walls, found.number))
+    code = volume.code if volume is not None else None
+    return _Breathing(at, rate, volume, measured_at(ctx, "mv", at, walls, rate=found.number, code=code))
 
 
 def _tidal_volume(b: _Breathing) -> DerivedFigure:
