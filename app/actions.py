@@ -8,11 +8,19 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
-from typing import Final
+from typing import TYPE_CHECKING, Final
 
-from PySide6.QtCore import QT_TRANSLATE_NOOP, QCoreApplication
+from PySide6.QtCore import QCoreApplication
 from PySide6.QtGui import QAction, QKeySequence
 from PySide6.QtWidgets import QMenu, QMenuBar, QWidget
+
+if TYPE_CHECKING:
+
+    def QT_TRANSLATE_NOOP(context: str, text: str) -> str:  # the stub says object
+        """Mark a text for translation and give it back."""
+
+else:
+    from PySide6.QtCore import QT_TRANSLATE_NOOP
 
 CONTEXT: Final = "action"
 

@@ -14,6 +14,7 @@ from app.episode.stack_words import stack_of
 from app.episode_shown import EpisodeOnScreen
 from app.explain import Explainer
 from app.phrases import translate
+from app.readers import reader_at
 from app.theme import Theme
 from app.ward.lane_words import indication_word
 from app.words import Reader
@@ -63,17 +64,17 @@ class EpisodeView(QWidget):
         head.addStretch(1)
         head.addWidget(self.notice)
         head.addWidget(self.panels_button)
-        self.scroll = QScrollArea()
-        self.scroll.setWidgetResizable(True)
-        self.scroll.setFrameShape(QFrame.Shape.NoFrame)
-        self.scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.scroll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
-        self.scroll.setWidget(self.stack)
+        self.roll = QScrollArea()
+        self.roll.setWidgetResizable(True)
+        self.roll.setFrameShape(QFrame.Shape.NoFrame)
+        self.roll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.roll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.roll.setWidget(self.stack)
         left = QVBoxLayout()
         left.setSpacing(px(4))
         left.addLayout(head)
         left.addWidget(self.readout)
-        left.addWidget(self.scroll, 1)
+        left.addWidget(self.roll, 1)
         row = QHBoxLayout(self)
         row.setContentsMargins(px(16), px(4), px(8), px(2))
         row.setSpacing(px(12))
@@ -128,7 +129,7 @@ class EpisodeView(QWidget):
 
     def _reader(self) -> Reader:
         assert self._on is not None
-        return Reader(self._on.zone, self._on.gas_unit)
+        return reader_at(self._on.zone, self._on.gas_unit, self._on.course.until)
 
     def _about(self, on: EpisodeOnScreen) -> str:
         facts = on.figures.profile
@@ -186,7 +187,7 @@ class EpisodeView(QWidget):
                 self.back.emit()
             return
         if event.key() in (Qt.Key.Key_PageUp, Qt.Key.Key_PageDown):
-            bar = self.scroll.verticalScrollBar()
+            bar = self.roll.verticalScrollBar()
             sign = 1 if event.key() == Qt.Key.Key_PageDown else -1
             bar.setValue(bar.value() + sign * bar.pageStep())
             return

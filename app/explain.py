@@ -15,6 +15,7 @@ from app.formats import clock, fixed, fraction, gas_pressure, minutes, quantity,
 from app.phrases import gas_name, gas_words
 from app.theme import Tier, tier_word, verdict_of, verdict_word
 from app.words import Reader, sentence
+from app.words.template import quantity_name
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import Limit
 from core.judgement.shapes import (
@@ -76,7 +77,9 @@ class Explainer:
         rule = self.policy.markers.get(flag.marker)
         rules = []
         if rule is not None and rule.limits:
-            told = ", ".join(f"{name.replace('_', ' ')} {value:g}" for name, value in rule.limits.items())
+            told = ", ".join(
+                f"{quantity_name(name)} {_limit_value(name, value)}" for name, value in rule.limits.items()
+            )
             rules.append(
                 translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told)
             )
@@ -272,3 +275,7 @@ def _mmol(value: float | None) -> str | None:
 
 def _plain(key: str, value: float | str) -> str:
     return value if isinstance(value, str) else quantity(key, value)
+
+
+def _limit_value(name: str, value: float) -> str:
+    return fixed(value, 2) if name.startswith("ph") else trimmed(value)

@@ -12,7 +12,7 @@ def _name(kind: str, key: str, reader: Reader) -> str:
     """The catalogue's name; a key without one is shown in plain letters rather than hidden."""
     full = f"{kind}.{key}"
     text = sentence(Message(full), reader).rstrip(".") if full in templates() else key.replace("_", " ")
-    return text[:1].upper() + text[1:]
+    return text if text.startswith("pH") else text[:1].upper() + text[1:]
 
 
 def marker_name(key: str, reader: Reader = PLAIN) -> str:

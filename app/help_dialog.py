@@ -27,8 +27,8 @@ LINES = (
     ("20m ago ph 7,28 paco2 8.3 kPa", "decimal comma or point, mmHg or kPa"),
     ("cpap 10 fio2 60%", "CPAP mode"),
     ("o2_flow 4", "oxygen by flow; FiO2 is not known then"),
-    ("gas sent    mask off    mask on", "events"),
-    ("note ...    told ...    handover remark ...", "words to the end of the line"),
+    ("gas sent | mask off | mask on", "events"),
+    ("note ... | told ... | handover remark ...", "words to the end of the line"),
 )
 
 

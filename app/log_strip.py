@@ -18,6 +18,7 @@ from app.operations import entry
 from app.operations.entry import LineRequest, Preview, Recorded
 from app.operations.outcome import Outcome
 from app.phrases import channel_name
+from app.readers import reader_at
 from app.session import SessionModel
 from app.strip.completion import completed, completions
 from app.strip.preview_words import PreviewWords, preview_words
@@ -128,7 +129,7 @@ class LogStrip(QFrame):
         self.line.left.connect(self.leave)
         self.line.completion_wanted.connect(self._complete)
         self.buttons["gas sent"].clicked.connect(self.gas_sent)
-        self.buttons["mask"].clicked.connect(self.mask)
+        self.buttons["mask"].clicked.connect(self.mask_moved)
         self.buttons["checked no change"].clicked.connect(self.checked)
 
     def set_theme(self, theme: Theme) -> None:
@@ -177,7 +178,7 @@ class LogStrip(QFrame):
         """One key: a gas was sent. Enter records it."""
         self.set_text("gas sent")
 
-    def mask(self) -> None:
+    def mask_moved(self) -> None:
         """One key: the mask came off, or went on."""
         self.set_text("mask on" if self._off_mask else "mask off")
 
@@ -328,7 +329,7 @@ class LogStrip(QFrame):
         return QTextDocumentFragment.fromHtml(self.said.text()).toPlainText()
 
     def _reader(self) -> Reader:
-        return Reader(self._zone, self._gas_unit)
+        return reader_at(self._zone, self._gas_unit, self._model.session.now())
 
     def _hint(self) -> str:
         if self._record is None:

@@ -103,18 +103,16 @@ def from_toml(text: str) -> Preferences:
 
 def _accepted(key: str, value: Any) -> bool:
     if key == "theme":
-        return value in ("light", "dark")
+        return bool(value in ("light", "dark"))
     if key == "text_scale":
-        return 1.0 <= value <= 2.0
+        return bool(1.0 <= value <= 2.0)
     if key == "gas_unit":
-        return value in ("mmHg", "kPa")
+        return bool(value in ("mmHg", "kPa"))
     if key == "window":
         return len(value) in (0, 4) and all(isinstance(n, int) for n in value)
     if key == "shift_starts":
         return len(value) >= 1 and all(isinstance(v, str) and _is_time(v) for v in value)
-    if key == "recent_stores":
-        return all(isinstance(v, str) for v in value)
-    return True
+    return key != "recent_stores" or all(isinstance(v, str) for v in value)
 
 
 def _is_time(text: str) -> bool:

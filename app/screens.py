@@ -24,10 +24,16 @@ from storage.store import Store
 
 SIZES: Final = ((1280, 800), (1920, 1080))
 LINE: Final = "20m ago 22/6 32 rr 27"
+DIALOGS: Final = (
+    ("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
+    ("table", "table"), ("help", "help"), ("about", "about"),
+)  # fmt: skip
 _PATIENCE_S: Final = 60.0
 
 
-def draw_all(folder: Path, store_path: Path | None = None, *, passphrase: str | None = None) -> tuple[Path, ...]:
+def draw_all(
+    folder: Path, store_path: Path | None = None, *, passphrase: str | None = None
+) -> tuple[Path, ...]:
     """Draw every screen into `folder`; the pictures' paths. The sample shift where no store is given.
 
     Raises:
@@ -47,7 +53,9 @@ def draw_all(folder: Path, store_path: Path | None = None, *, passphrase: str | 
     return tuple(made)
 
 
-def _session(scratch: Path, store_path: Path | None, passphrase: str | None) -> tuple[Session, Callable[[], Store]]:
+def _session(
+    scratch: Path, store_path: Path | None, passphrase: str | None
+) -> tuple[Session, Callable[[], Store]]:
     if store_path is not None:
         from app.local_zone import local_zone
 
@@ -82,7 +90,9 @@ def _draw(
     return made
 
 
-def _screens(window: MainWindow, session: Session, opener: Callable[[], Store]) -> Iterator[tuple[str, QWidget]]:
+def _screens(
+    window: MainWindow, session: Session, opener: Callable[[], Store]
+) -> Iterator[tuple[str, QWidget]]:
     _pass_events()
     yield "first", window
     window.show_model(SessionModel(session, Runner(opener), window))
@@ -120,8 +130,7 @@ def _strip(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
 
 
 def _dialogs(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
-    for name, key in (("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
-                      ("table", "table"), ("help", "help"), ("about", "about")):  # fmt: skip
+    for name, key in DIALOGS:
         window.actions_by_key[key].trigger()
         _settle(window)
         dialog = QApplication.activeModalWidget() or next(
@@ -145,7 +154,9 @@ def _wait_for(window: MainWindow, done: Callable[[], bool]) -> None:
     began = monotonic()
     while not done():
         if monotonic() - began > _PATIENCE_S:
-            raise RuntimeError(f"the window {window.windowTitle()!r} did not get its figures in {_PATIENCE_S:.0f} s")
+            raise RuntimeError(
+                f"the window {window.windowTitle()!r} did not get its figures in {_PATIENCE_S:.0f} s"
+            )
         QApplication.processEvents(QEventLoop.ProcessEventsFlag.WaitForMoreEvents, 20)
     _pass_events()
 
@@ -153,6 +164,3 @@ def _wait_for(window: MainWindow, done: Callable[[], bool]) -> None:
 def _pass_events() -> None:
     for _ in range(5):
         QApplication.processEvents(QEventLoop.ProcessEventsFlag.AllEvents, 20)
-
-
-

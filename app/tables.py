@@ -98,7 +98,7 @@ def _rows(trace: Trace, panel: str, zone: str) -> list[tuple[int, tuple[str, ...
         Look.DISPUTED: translate("tables", "disputed"),
         Look.CARRIED: translate("tables", "carried forward"),
     }
-    made = []
+    made: list[tuple[int, tuple[str, ...]]] = []
     for n in np.flatnonzero(np.isfinite(trace.v)):
         at = int(trace.t[n])
         marks = (

@@ -13,13 +13,14 @@ from app.chart.lanes import WardLanes
 from app.chart.shapes import LaneItem, LanesSpec
 from app.choice_row import ChoiceRow
 from app.formats import clock
+from app.readers import reader_at
 from app.shift import Shift
 from app.theme import Theme, Tier
 from app.ward.lane_words import LaneWords, OnWard, strongest_flag
 from app.ward.legend import Legend
 from app.ward.ordering import Order, Shown, first_to_see, ordered, shown
 from app.ward.see_first import SeeFirst
-from app.words import Reader, sentence
+from app.words import sentence
 from core.record.instant import Instant
 
 
@@ -181,7 +182,7 @@ class WardView(QWidget):
             return
         ward = [e.figures for e in content.episodes]
         top = first_to_see(ward)
-        words = LaneWords(Reader(content.zone, content.gas_unit), content.as_of)
+        words = LaneWords(reader_at(content.zone, content.gas_unit, content.as_of), content.as_of)
         labels = [f.label for f in ward]
         lanes = [
             words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1)

@@ -20,6 +20,7 @@ from app.log_strip import LogStrip
 from app.pages import Pages
 from app.preferences import Preferences
 from app.progress_line import ProgressLine
+from app.readers import reader_at
 from app.session import Changed, SessionModel, What
 from app.shift import Shift, shift_of
 from app.theme import THEMES, Theme, apply_theme
@@ -119,8 +120,10 @@ class MainWindow(QMainWindow):
     @property
     def reader(self) -> Reader:
         """For whom sentences are written."""
-        zone = self.model.session.zone if self.model is not None else "UTC"
-        return Reader(zone, self.preferences.gas_unit)
+        if self.opened is None:
+            return Reader("UTC", self.preferences.gas_unit)
+        session = self.opened.model.session
+        return reader_at(session.zone, self.preferences.gas_unit, session.moment())
 
     def prefer(self, **values: object) -> None:
         """Change preferences, keep them, and show what they change."""
@@ -356,12 +359,13 @@ class MainWindow(QMainWindow):
 
     def _clear_column(self) -> None:
         while self._column.count():
-            item = self._column.takeAt(0)
-            _let_go(item)
+            _let_go(self._column.takeAt(0))
         self.top.hide()
 
 
-def _let_go(item: QLayoutItem) -> None:
+def _let_go(item: QLayoutItem | None) -> None:
+    if item is None:
+        return
     widget, layout = item.widget(), item.layout()
     if isinstance(widget, TopBar | ProgressLine):
         widget.hide()

@@ -48,7 +48,7 @@ class EpisodeDeeds(Doer):
             self.model.ask(panel_operations.keep, layout, done=self._panels_kept)
 
     def _panels_kept(self, outcome: Outcome[panel_operations.Layout]) -> None:  # noqa: ARG002
-        self.model.layout_changed()
+        self.model.look_for_changes()
 
     def do_go_start(self) -> None:
         """Show the start of support."""

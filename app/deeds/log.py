@@ -29,7 +29,7 @@ class LogDeeds(Doer):
 
     def do_mask(self) -> None:
         """The mask came off, or went on."""
-        self.strip.mask()
+        self.strip.mask_moved()
 
     def do_checked(self) -> None:
         """Looked, changed nothing."""

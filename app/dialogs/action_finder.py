@@ -57,8 +57,9 @@ class ActionFinder(QDialog):
             item.setData(0, Qt.ItemDataRole.UserRole, deed.key)
             item.setDisabled(not action.isEnabled())
             self.list.addTopLevelItem(item)
-        if self.list.topLevelItemCount():
-            self.list.setCurrentItem(self.list.topLevelItem(0))
+        first = self.list.topLevelItem(0)
+        if first is not None:
+            self.list.setCurrentItem(first)
 
     def _take(self) -> None:
         item = self.list.currentItem()

@@ -3,7 +3,14 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QDialog, QDialogButtonBox, QFormLayout, QLabel, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QDialog,
+    QDialogButtonBox,
+    QFormLayout,
+    QLabel,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.theme import Theme
 
@@ -34,6 +41,7 @@ class AskingDialog(QDialog):
         column.setSpacing(theme.px(10))
         self.body = QVBoxLayout()
         column.addLayout(self.body)
+        self._column = column
         column.addLayout(self.form)
         column.addWidget(self.wrong)
         column.addStretch(1)
@@ -43,6 +51,12 @@ class AskingDialog(QDialog):
         """A field with its label; the label is its accessible name."""
         widget.setAccessibleName(label)
         self.form.addRow(label, widget)
+
+    def add_body(self, widget: QWidget) -> None:
+        """A widget over the fields, which takes the room there is."""
+        self.body.addWidget(widget)
+        self._column.setStretchFactor(self.body, 1)
+        self._column.setStretch(3, 0)
 
     def submit(self) -> None:
         """What the accepting button does; the usual one closes the dialog."""

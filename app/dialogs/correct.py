@@ -8,7 +8,6 @@ from enum import StrEnum
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
     QAbstractItemView,
-    QComboBox,
     QHeaderView,
     QLineEdit,
     QTreeWidget,
@@ -16,6 +15,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.chooser import Chooser
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import quantity, wall
@@ -71,12 +71,15 @@ class CorrectDialog(AskingDialog):
         self.list.setRootIsDecorated(False)
         self.list.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
         self.list.header().setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
-        self.body.addWidget(self.list)
+        self.list.header().setStretchLastSection(False)
+        self.list.header().setSectionResizeMode(2, QHeaderView.ResizeMode.Stretch)
+        self.list.setTextElideMode(Qt.TextElideMode.ElideRight)
+        self.add_body(self.list)
         self.act, self.value, self.time, self.to, self.reason = (
-            QComboBox(),
+            Chooser(),
             QLineEdit(),
             QLineEdit(),
-            QComboBox(),
+            Chooser(),
             QLineEdit(),
         )
         for act, word in (
@@ -97,7 +100,7 @@ class CorrectDialog(AskingDialog):
         self.act.currentIndexChanged.connect(self._act_chosen)
         self._fill()
         self._act_chosen()
-        self.resize(theme.px(720), theme.px(600))
+        self.resize(theme.px(860), theme.px(640))
 
     def _fill(self) -> None:
         for s in sorted(self._record.standing, key=lambda s: (-s.entry.at, -s.entry.seq)):
@@ -122,8 +125,9 @@ class CorrectDialog(AskingDialog):
             )
             item.setData(0, _ENTRY, e.id)
             self.list.addTopLevelItem(item)
-        if self.list.topLevelItemCount():
-            self.list.setCurrentItem(self.list.topLevelItem(0))
+        first = self.list.topLevelItem(0)
+        if first is not None:
+            self.list.setCurrentItem(first)
 
     def _chosen(self) -> None:
         found = self._entry()

@@ -61,8 +61,10 @@ class IntakeDialog(AskingDialog):
         self.leave_out = QCheckBox(self.tr("Leave the refused rows out; this is recorded"))
         self.leave_out.hide()
         self.leave_out.toggled.connect(self._allow)
-        for widget in (self.summary, self.bar, self.table, self.leave_out):
-            self.body.addWidget(widget)
+        self.body.addWidget(self.summary)
+        self.body.addWidget(self.bar)
+        self.add_body(self.table)
+        self.body.addWidget(self.leave_out)
         self.table.hide()
         self.resize(theme.px(820), theme.px(520))
         self.go.setEnabled(False)

@@ -5,8 +5,9 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 
-from PySide6.QtWidgets import QComboBox, QLineEdit, QWidget
+from PySide6.QtWidgets import QLineEdit, QWidget
 
+from app.chooser import Chooser
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import day
@@ -36,7 +37,7 @@ class NewEpisodeDialog(AskingDialog):
         super().__init__(self.tr("New episode"), self.tr("Begin"), theme, parent)
         self._policy, self._now, self._reader, self._ask = policy, now, reader, ask
         self.label, self.location, self.age = QLineEdit(), QLineEdit(), QLineEdit()
-        self.indication, self.ceiling, self.resuscitation = QComboBox(), QComboBox(), QComboBox()
+        self.indication, self.ceiling, self.resuscitation = Chooser(), Chooser(), Chooser()
         self.target_low, self.target_high = QLineEdit(), QLineEdit()
         self.contact = QLineEdit()
         self.indication.addItem(self.tr("not known yet"), "")

@@ -61,6 +61,8 @@ class PanelEditor(QDialog):
         px = self._theme.px
         self.list.setAccessibleName(self.tr("Panels, top to bottom"))
         self.channels.setAccessibleName(self.tr("Channels in this panel"))
+        for box in (self.list, self.channels):
+            box.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         grid = QGridLayout()
         grid.setSpacing(px(8))
         fields = (
@@ -133,7 +135,7 @@ class PanelEditor(QDialog):
     def key(self) -> str:
         """The panel in hand."""
         item = self.list.currentItem()
-        return item.data(_KEY) if item is not None else self.panels.panels[0].key
+        return str(item.data(_KEY)) if item is not None else self.panels.panels[0].key
 
     def _show(self, key: str) -> None:
         self._filling = True
@@ -156,7 +158,7 @@ class PanelEditor(QDialog):
         self.channels.clear()
         order = (*panel.channels, *(c for c in drawable() if c not in panel.channels))
         for channel in order:
-            item = QListWidgetItem(f"{computed_name(channel)}, {unit_of(channel)}")
+            item = QListWidgetItem(_named(channel))
             item.setData(_KEY, channel)
             item.setFlags(item.flags() | Qt.ItemFlag.ItemIsUserCheckable)
             item.setCheckState(
@@ -276,3 +278,9 @@ class PanelEditor(QDialog):
                 self.wrong.setText(str(error))
                 return
             self._become(from_toml, text)
+
+
+def _named(channel: str) -> str:
+    """A channel with its unit, where the unit says more than the name."""
+    name, unit = computed_name(channel), unit_of(channel)
+    return name if unit in ("", name, "points") else f"{name}, {'%' if unit == 'fraction' else unit}"

@@ -7,8 +7,9 @@ from math import ceil, floor
 from typing import Final
 
 import numpy as np
+from numpy.typing import NDArray
 
-from app.chart.shapes import Scale, Trace
+from app.chart.shapes import Area, Scale, Trace
 from app.episode.traces import shown_as
 from app.panels import Panel
 
@@ -49,7 +50,9 @@ USUAL: Final = {
 _STEPS: Final = (0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200, 500)
 
 
-def scales_of(panel: Panel, traces: Sequence[Trace], gas_unit: str) -> tuple[Scale, ...]:
+def scales_of(
+    panel: Panel, traces: Sequence[Trace], gas_unit: str, areas: Sequence[Area] = ()
+) -> tuple[Scale, ...]:
     """One scale for each unit, in the order of the channels; a fixed range holds for the first unit."""
     by_unit: dict[str, list[str]] = {}
     for channel in panel.channels:
@@ -59,7 +62,9 @@ def scales_of(panel: Panel, traces: Sequence[Trace], gas_unit: str) -> tuple[Sca
         factors = [shown_as(c, gas_unit) for c in channels]
         low = min(USUAL.get(c, (0, 1))[0] * f.factor for c, f in zip(channels, factors, strict=True))
         high = max(USUAL.get(c, (0, 1))[1] * f.factor for c, f in zip(channels, factors, strict=True))
-        low, high = widened(low, high, [t for t in traces if t.unit == unit])
+        values = [t.v for t in traces if t.unit == unit]
+        values += [end for a in areas if a.unit == unit for end in (a.low, a.high)]
+        low, high = widened(low, high, values)
         if n == 0:
             low, high = _fixed(panel, factors[0].factor, low, high)
         made.append(Scale(unit, low, high, max(f.decimals for f in factors)))
@@ -72,10 +77,10 @@ def _fixed(panel: Panel, factor: float, low: float, high: float) -> tuple[float,
     return (new_low, new_high) if new_low < new_high else (low, high)
 
 
-def widened(low: float, high: float, traces: Sequence[Trace]) -> tuple[float, float]:
+def widened(low: float, high: float, values: Sequence[NDArray[np.float64]]) -> tuple[float, float]:
     """The range, with every finite value inside and round ends where it was widened."""
-    values = [t.v[np.isfinite(t.v)] for t in traces]
-    found = np.concatenate(values) if values else np.empty(0)
+    finite = [v[np.isfinite(v)] for v in values]
+    found = np.concatenate(finite) if finite else np.empty(0)
     if found.size == 0:
         return low, high
     least, most = float(found.min()), float(found.max())

@@ -46,7 +46,8 @@ class SideColumn(QScrollArea):
 
     def facts(self) -> list[Fact]:
         """All facts from top to bottom."""
-        return self.widget().findChildren(Fact) if self.widget() is not None else []
+        inside = self.widget()
+        return inside.findChildren(Fact) if inside is not None else []
 
     def show_figures(self, figures: EpisodeFigures, policy: Policy, reader: Reader) -> None:
         """Draw the figures anew, keeping the place that was scrolled to."""

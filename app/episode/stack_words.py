@@ -63,7 +63,8 @@ def _start(on: EpisodeOnScreen) -> Instant:
 
 def _panel(on: EpisodeOnScreen, panel: Panel, maker: TraceMaker) -> PanelSpec:
     traces = tuple(t for n, c in enumerate(panel.channels) for t in maker.traces(c, n))
-    scales = scales_of(panel, traces, on.gas_unit)
+    areas = tuple(_areas(on, panel))
+    scales = scales_of(panel, traces, on.gas_unit, areas)
     gas = bool({"ph", "paco2"} & set(panel.channels))
     return PanelSpec(
         panel.key,
@@ -71,7 +72,7 @@ def _panel(on: EpisodeOnScreen, panel: Panel, maker: TraceMaker) -> PanelSpec:
         traces,
         scales,
         tuple(_bands(on, panel)) if panel.bands else (),
-        tuple(_areas(on, panel)),
+        areas,
         tuple(_brackets(on)) if gas else (),
         panel.height,
     )

@@ -43,36 +43,31 @@ class _Writer:
 
     def ward(self, content: SheetContent) -> Iterator[str]:
         page = content.ward
-        yield self.heading(f"{page.shift}", self.theme.type.title)
-        yield self.heading(
-            translate("handover", "See first: {who}").format(who=page.see_first), self.theme.type.emphasis
+        yield self.heading(page.shift, self.theme.type.title)
+        first = translate("handover", "See first: {who}").format(who=page.see_first)
+        yield self.heading(first, self.theme.type.emphasis)
+        heads = (
+            translate("handover", "Who"),
+            translate("handover", "State"),
+            translate("handover", "Support and response"),
+            translate("handover", "Open flags"),
         )
-        yield self.table(
-            (
-                translate("handover", "Who"),
-                translate("handover", "State"),
-                translate("handover", "Support and response"),
-                translate("handover", "Open flags"),
-                translate("handover", "Due"),
-            ),
-            (self.ward_row(r) for r in page.rows),
-            (15, 20, 33, 19, 13),
+        yield self.table(heads, (self.ward_row(r) for r in page.rows), (16, 22, 36, 26))
+        yield self.heading(translate("handover", "Due, by time"), self.theme.type.emphasis)
+        yield from (
+            self.text(line) for line in page.due or (translate("handover", "Nothing due within 4 h."),)
         )
-        for line in page.missing:
-            yield self.quiet(line)
+        yield from (self.quiet(line) for line in page.missing)
 
     def ward_row(self, r: WardRow) -> tuple[str, ...]:
         quiet = f'<span style="color:{self.c.ink_quiet}">'
         link = f'<a href="#{escape(r.label)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a>'
         who = f"{link}<br>{quiet}{escape(r.who)}</span>"
         change = f"<br>{escape(r.change_of_state)}" if r.change_of_state else ""
-        flags = (
-            "<br>".join(escape(f) for f in r.flags)
-            or f"{quiet}{escape(translate('handover', 'none'))}</span>"
-        )
-        due = escape(r.due) or f"{quiet}{escape(translate('handover', 'nothing'))}</span>"
+        told = [escape(f) for f in r.flags] + ([f"{quiet}{escape(r.remarks)}</span>"] if r.remarks else [])
+        flags = "<br>".join(told) or f"{quiet}{escape(translate('handover', 'none'))}</span>"
         support = f"{escape(r.support)}<br>{quiet}{escape(r.response)}</span>"
-        return who, escape(r.state) + change, support, flags, due
+        return who, escape(r.state) + change, support, flags
 
     def table(self, heads: Iterable[str], rows: Iterable[Iterable[str]], widths: Iterable[int]) -> str:
         """Cells are rich text already; widths in per cent."""
@@ -85,7 +80,7 @@ class _Writer:
         body = "".join(
             "<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows
         )
-        return f'<table width="100%" cellspacing="0" style="border-collapse:collapse"><tr>{head}</tr>{body}</table>'
+        return f'<table width="98%" cellspacing="0" style="border-collapse:collapse"><tr>{head}</tr>{body}</table>'
 
     def episode(self, page: EpisodePage) -> Iterator[str]:
         yield f'<hr style="background:{self.c.line}">'

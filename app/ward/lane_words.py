@@ -32,6 +32,9 @@ from core.record.instant import MINUTE, Instant
 translate = QCoreApplication.translate
 OPEN_FLAGS = ("raised", "seen")
 CLOSE = 30 * MINUTE
+FLAG_COLUMN = 38
+"""Letters that the flags' column holds at the least size of the window."""
+_STEP_ORDER = {c: n for n, c in enumerate(("mode", "ipap", "epap", "cpap", "fio2", "o2_flow"))}
 _TIERS = ("escalate", "concern", "remark")
 
 
@@ -81,7 +84,7 @@ class LaneWords:
             verdict=latest,
             verdict_word=verdict_word(latest) if latest is not None else "",
             tier=Tier(strongest.tier) if strongest is not None else None,
-            flag_word="; ".join(flag_words(f)),
+            flag_word=short_flags(flag_words(f)),
             due_word=self._due_word(due) if not ended else self._end_word(f),
             due_late=due is not None and due.state == "overdue",
             first_word=translate("ward", "See first") if first else "",
@@ -288,7 +291,9 @@ def anchor_name(response: ResponseFigure) -> str:
         return translate("ward", "the start of support")
     if response.anchor == "break_end":
         return translate("ward", "the end of a break")
-    parts = [_step_words(s.channel, s.after) for s in response.steps[-2:]]
+    latest = {s.channel: s for s in response.steps}
+    order = sorted(latest.values(), key=lambda s: _STEP_ORDER.get(s.channel, len(_STEP_ORDER)))
+    parts = [_step_words(s.channel, s.after) for s in order[:3]]
     return ", ".join(parts) or translate("ward", "a change of settings")
 
 
@@ -318,6 +323,22 @@ def open_flags(f: EpisodeFigures) -> list[FlagFigure]:
 def flag_words(f: EpisodeFigures) -> list[str]:
     """The strongest open flag of each group in short words."""
     return [marker_name(g.marker) for g in open_flags(f)]
+
+
+def short_flags(names: list[str]) -> str:
+    """Names for a narrow column: the strongest always, others while they fit, then how many more.
+
+    >>> short_flags(["pH below 7.25", "GCS fallen", "SpO2 above range on oxygen at hypercapnic risk"])
+    'pH below 7.25; GCS fallen +1'
+    """
+    short = [name.partition(":")[0] for name in names]
+    told = short[:1]
+    for name in short[1:]:
+        if len("; ".join((*told, name))) > FLAG_COLUMN:
+            break
+        told.append(name)
+    more = len(short) - len(told)
+    return "; ".join(told) + (f" +{more}" if more else "")
 
 
 def _latest_gas(f: EpisodeFigures) -> GasFigure | None:

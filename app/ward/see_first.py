@@ -53,7 +53,7 @@ class SeeFirst(QFrame):
         words.setSpacing(theme.px(16))
         words.addWidget(self._title)
         words.addWidget(self._why, 1)
-        row = QHBoxLayout(self)
+        self._row = row = QHBoxLayout(self)
         row.setSpacing(theme.px(12))
         row.addWidget(self._sign, 0, Qt.AlignmentFlag.AlignVCenter)
         row.addLayout(words, 1)
@@ -65,7 +65,7 @@ class SeeFirst(QFrame):
         self._sign.theme = theme
         self._sign.setFixedSize(self._sign.sizeHint())
         margin = theme.px(4)
-        self.layout().setContentsMargins(theme.px(16), margin, theme.px(12), margin)
+        self._row.setContentsMargins(theme.px(16), margin, theme.px(12), margin)
 
     def show_first(self, key: str, label: str, why: str, tier: Tier | None) -> None:
         """Say whom to see first; an empty key says that nobody stands out."""
