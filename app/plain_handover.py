@@ -50,8 +50,8 @@ def _row(row: WardRow) -> Iterator[str]:
     yield from _wrapped(f"{row.number}. {row.label}: {row.state}{change}")
     for text in (f"{row.who}. {row.limits}", row.support, row.response, *row.flags):
         yield from _wrapped(text, "   ")
-    if row.due:
-        yield from _wrapped(f"Due: {row.due}", "   ")
+    if row.remarks:
+        yield from _wrapped(f"REMARK {row.remarks}", "   ")
 
 
 def _episode(page: EpisodePage, unit: str) -> Iterator[str]:

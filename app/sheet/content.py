@@ -64,6 +64,7 @@ class WardRow:
     support: str
     response: str
     flags: tuple[str, ...]
+    remarks: str
     due: str
     limits: str
     ended: bool = False
@@ -169,14 +170,33 @@ class _Writer:
     def _ward_row(self, number: int, s: ShiftFigures) -> WardRow:
         f, p = s.now, s.now.profile
         opened = sorted((x for x in s.flags_open if x.strongest), key=_strength)
+        strong = [x for x in opened if x.tier != "remark"]
+        remarks = [x for x in opened if x.tier == "remark"]
         return WardRow(
             number, f.label, self._who(f), opened[0].tier if opened else "", self._standing(f),
-            self._change_of_state(s), self._support_now(f), self._latest_response(f),
-            tuple(self._flag_line(x) for x in opened), "; ".join(self._due_short(d) for d in s.due),
+            self._change_of_state(s), self._support_short(f), self._latest_response(f),
+            tuple(self._flag_line(x) for x in strong), "; ".join(self._remark(x) for x in remarks),
+            "; ".join(self._due_short(d) for d in s.due),
             f"Ceiling: {p.get('ceiling_of_care') or formats.ABSENT}. "
             f"Resuscitation: {p.get('resuscitation') or formats.ABSENT}.",
             f.support.ended_at is not None,
         )  # fmt: skip
+
+    def _support_short(self, f: EpisodeFigures) -> str:
+        """Support and oxygen as short as a ward's list needs them."""
+        s = f.support
+        if s.ended_at is not None:
+            return self._support_now(f)
+        if s.break_since is not None:
+            return f"OFF THE MASK since {self._clock(s.break_since)}"
+        pressure = ""
+        if s.ipap_cmH2O is not None and s.epap_cmH2O is not None:
+            pressure = f" {formats.trimmed(s.ipap_cmH2O)}/{formats.trimmed(s.epap_cmH2O)} cmH2O"
+        elif s.epap_cmH2O is not None:
+            pressure = f" {formats.trimmed(s.epap_cmH2O)} cmH2O"
+        support = s.pressure_support_cmH2O if s.ipap_cmH2O is not None else None
+        more = f" (PS {formats.trimmed(support)})" if support is not None else ""
+        return f"{s.mode or 'mode not recorded'}{pressure}{more}, {self._lines.oxygen(s)}"
 
     def _support_now(self, f: EpisodeFigures) -> str:
         s = f.support
@@ -222,13 +242,16 @@ class _Writer:
         if judged:
             r = judged[-1]
             anchor = "support started" if r.anchor == "start" else self._lines.anchor(r)
-            text = f"{self._moment(r.anchor_at)} {anchor}. {_opened(self._lines.verdict(r))}"
+            text = f"{self._moment(r.anchor_at)} {anchor}. {_opened(self._lines.verdict(r, brief=True))}"
         if waiting is not None:
             text += f" Change of {self._moment(waiting.anchor_at)}: response not yet known."
         return text.strip() or "No response judged yet."
 
     def _flag_line(self, f: FlagFigure) -> str:
-        return f"{f.tier.upper()} {marker_name(f.marker, self._reader)}, since {self._moment(f.since)}"
+        return f"{f.tier.upper()} {self._remark(f)}"
+
+    def _remark(self, f: FlagFigure) -> str:
+        return f"{marker_name(f.marker, self._reader)}, since {self._moment(f.since)}"
 
     def _ward_due(self) -> Iterator[str]:
         items = [(d, s.now.label) for s in self._h.shift.episodes for d in s.due]

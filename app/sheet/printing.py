@@ -20,6 +20,8 @@ PAPERS: Final = {"A4": QPageSize.PageSizeId.A4, "Letter": QPageSize.PageSizeId.L
 DOTS_PER_INCH: Final = 1200
 _MARGIN: Final = 36.0
 _HEAD, _FOOT = 40.0, 27.0
+_SUBTITLE = 15.0
+"""The height of the line under a title, which the ward's page does without."""
 
 
 def write_pdf(content: SheetContent, path: Path, paper: str = "A4") -> int:
@@ -94,17 +96,18 @@ class _Job:
         self._signed = Signatures(content.given_by, content.taken_by)
         self._left, self._width = _MARGIN, width - 2 * _MARGIN
         self._top, self._bottom = _MARGIN + _HEAD, height - _MARGIN - _FOOT
+        self._ward_top = self._top - _SUBTITLE
         self._number = 0
-        ward = split_ward(content.ward, press, self._width, self._bottom - self._top, self._signed)
+        ward = split_ward(content.ward, press, self._width, self._bottom - self._ward_top, self._signed)
         self._ward = ward
         self._pages = len(ward) + len(content.episodes)
 
     def run(self) -> int:
         c, w = self._content, self._content.ward
         for n, part in enumerate(self._ward):
-            self._begin(w.title if n == 0 else f"{w.title}, continued", w.shift, "")
+            self._begin(w.title if n == 0 else f"{w.title}, continued", "", w.shift)
             signed = self._signed if n + 1 == len(self._ward) else None
-            draw_ward(part, self._press, self._left, self._top, self._width, self._bottom, signed)
+            draw_ward(part, self._press, self._left, self._ward_top, self._width, self._bottom, signed)
         for page in c.episodes:
             self._begin(page.label, page.subtitle, page.standing)
             fitted = fit_episode(page, self._press, self._width, self._bottom - self._top, c.gas_unit, self._signed)
@@ -128,10 +131,12 @@ class _Job:
                      Style(8.5, True))  # fmt: skip
         p.text(left + taken, _MARGIN - 3, wide - taken, _on_one_line(p, standing, style, wide - taken), style,
                Align.RIGHT)  # fmt: skip
-        line = subtitle if not standing else f"{subtitle}. {self._content.ward.shift}"
-        size = SUBTITLE if p.width(line, SUBTITLE) <= wide else SMALL
-        p.text(left, _MARGIN + 15, wide, _on_one_line(p, line, size, wide), size)
-        p.line(left, _MARGIN + 31, left + wide, _MARGIN + 31, 1.4)
+        rule = _MARGIN + 31 - (0 if subtitle else _SUBTITLE)
+        p.line(left, rule, left + wide, rule, 1.4)
+        if subtitle:
+            line = f"{subtitle}. {self._content.ward.shift}"
+            size = SUBTITLE if p.width(line, SUBTITLE) <= wide else SMALL
+            p.text(left, _MARGIN + 15, wide, _on_one_line(p, line, size, wide), size)
 
     def _draw_foot(self) -> None:
         p, c, top = self._press, self._content, self._page_height - _MARGIN - _FOOT + 8

@@ -7,67 +7,105 @@ from dataclasses import dataclass
 
 from app.sheet.blocks import Block, Heading, Signatures, Text, draw_all, draw_tier, height_of
 from app.sheet.content import WardPage, WardRow
-from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Press, Style
+from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Align, Press, Style
 
-SCALES = (1.08, 1.04, 1.0, 0.96, 0.92, 0.88, 0.84, 0.8, 0.77)
-LABEL = Style(11.5, True)
-_LEFT = 118.0
+SCALES = (1.08, 1.04, 1.0, 0.96, 0.92, 0.88, 0.85, 0.82, 0.79, 0.77, 0.75)
+LABEL = Style(11, True)
 _TIER = 50.0
+_DUE_COLUMNS = 3
 
 
 @dataclass(frozen=True, slots=True)
 class RowBlock:
-    """One episode: bed and person at the left; state, support, response, flags and due at the right."""
+    """One episode: bed and person; the last gas and the support; the response; its flags, one line each."""
 
     row: WardRow
 
-    def _lines(self) -> list[tuple[str, str, Style]]:
+    def _about(self) -> str:
         r = self.row
-        state = r.state + (f". {r.change_of_state[0].upper()}{r.change_of_state[1:]}" if r.change_of_state else "")
-        lines = [("", state, STRONG), ("", r.support, BODY), ("", r.response, BODY)]
-        lines += [(f.partition(" ")[0].lower(), f.partition(" ")[2], STRONG) for f in r.flags]
-        if r.due:
-            lines.append(("due", f"Due: {r.due}", BODY))
-        return lines
-
-    def height(self, press: Press, width: float) -> float:
-        left = press.gap(_LEFT)
-        right = sum(self._line_height(press, x, width - left) for x in self._lines())
-        return max(right, self._left_height(press)) + press.gap(5)
-
-    def _line_height(self, press: Press, line: tuple[str, str, Style], width: float) -> float:
-        tier = press.gap(_TIER + 4) if line[0] not in ("", "due") else 0.0
-        return press.height(line[1], line[2], width - tier) + press.gap(1)
-
-    def _left_height(self, press: Press) -> float:
-        wide = press.gap(_LEFT - 10)
-        return (
-            press.height(self._title(), LABEL, wide)
-            + press.height(self.row.who, SMALL, wide)
-            + press.height(self.row.limits, SMALL, wide)
-        )
+        change = f"{r.change_of_state[0].upper()}{r.change_of_state[1:]}. " if r.change_of_state else ""
+        return f"{r.who}. {change}{r.limits}"
 
     def _title(self) -> str:
         return f"{self.row.number}  {self.row.label}"
 
+    def _is_side_by_side(self, press: Press, width: float) -> bool:
+        """Whether gas and support have room on one line."""
+        taken = press.width(self.row.state, STRONG) + press.width(self.row.support, BODY) + press.gap(10)
+        return taken <= width
+
+    def _flags(self) -> list[tuple[str, str, Style]]:
+        found = [(f.partition(" ")[0].lower(), f.partition(" ")[2], STRONG) for f in self.row.flags]
+        return [*found, ("remark", self.row.remarks, BODY)] if self.row.remarks else found
+
+    def _flag_lines(self, press: Press, width: float) -> list[list[tuple[str, str, Style]]]:
+        """The flags in lines: two to a line where both have room in half of it."""
+        half, lines = self._flag_width(press, width), list[list[tuple[str, str, Style]]]()
+        room = half - press.gap(_TIER + 4)
+        for flag in self._flags():
+            fits = press.width(flag[1], flag[2]) <= room
+            alone = bool(lines) and len(lines[-1]) == 1 and press.width(lines[-1][0][1], lines[-1][0][2]) <= room
+            if fits and alone:
+                lines[-1].append(flag)
+            else:
+                lines.append([flag])
+        return lines
+
+    def _title_height(self, press: Press, width: float) -> float:
+        about = width - press.width(self._title(), LABEL) - press.gap(12)
+        small = press.height(self._about(), SMALL, about) + press.gap(2.5)
+        return max(press.height(self._title(), LABEL, width), small)
+
+    def _gas_height(self, press: Press, width: float) -> float:
+        one = press.height(self.row.state, STRONG, width)
+        return one if self._is_side_by_side(press, width) else one + press.height(self.row.support, BODY, width)
+
+    def _flag_width(self, press: Press, width: float) -> float:
+        return (width - press.gap(12)) / 2
+
+    def _flag_height(self, press: Press, words: str, width: float, style: Style) -> float:
+        return press.height(words, style, width - press.gap(_TIER + 4)) + press.gap(1.6)
+
+    def _flags_height(self, press: Press, width: float) -> float:
+        lines = self._flag_lines(press, width)
+        return sum(max(self._flag_height(press, w, width, s) for _, w, s in line) for line in lines)
+
+    def height(self, press: Press, width: float) -> float:
+        return (
+            self._title_height(press, width) + self._gas_height(press, width)
+            + press.height(self.row.response, BODY, width) + self._flags_height(press, width) + press.gap(6)
+        )  # fmt: skip
+
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
-        high = self.height(press, width)
-        if self.row.tier in ("escalate", "concern"):
-            press.box(x - 6, y, 2.6, high - press.gap(3), fill=INK if self.row.tier == "escalate" else "#9a9a9a")
-        wide, top = press.gap(_LEFT - 10), y
-        ink = GREY if self.row.ended else INK
-        top += press.text(x, top, wide, self._title(), Style(LABEL.size, True, ink))
-        top += press.text(x, top, wide, self.row.who, SMALL)
-        press.text(x, top, wide, self.row.limits, SMALL)
-        left, top = x + press.gap(_LEFT), y + press.gap(1)
-        for tier, words, style in self._lines():
-            shift = 0.0
-            if tier not in ("", "due"):
-                draw_tier(press, left, top - press.gap(1), press.gap(_TIER), tier)
-                shift = press.gap(_TIER + 4)
-            press.text(left + shift, top, width - (left - x) - shift, words, style)
-            top += self._line_height(press, (tier, words, style), width - (left - x))
-        press.line(x, y + high - press.gap(2.2), x + width, y + high - press.gap(2.2), 0.3, LINE)
+        r, high = self.row, self.height(press, width)
+        if r.tier in ("escalate", "concern"):
+            press.box(x - 6, y + 1, 2.6, high - press.gap(4), fill=INK if r.tier == "escalate" else "#9a9a9a")
+        press.text(x, y, width, self._title(), Style(LABEL.size, True, GREY if r.ended else INK))
+        taken = press.width(self._title(), LABEL) + press.gap(12)
+        press.text(x + taken, y + press.gap(2.8), width - taken, self._about(), SMALL)
+        y += self._title_height(press, width)
+        press.text(x, y, width, r.state, STRONG)
+        if self._is_side_by_side(press, width):
+            press.text(x, y, width, r.support, BODY, Align.RIGHT)
+        else:
+            press.text(x, y + press.height(r.state, STRONG, width), width, r.support, BODY)
+        y += self._gas_height(press, width)
+        y += press.text(x, y, width, r.response, BODY)
+        y = self._draw_flags(press, x, y + press.gap(1), width)
+        press.line(x, y + press.gap(2), x + width, y + press.gap(2), 0.3, LINE)
+
+    def _draw_flags(self, press: Press, x: float, y: float, width: float) -> float:
+        half = self._flag_width(press, width)
+        for line in self._flag_lines(press, width):
+            for n, (tier, words, style) in enumerate(line):
+                wide = half if len(line) == 2 else width
+                self._draw_flag(press, x + n * (half + press.gap(12)), y, wide, tier, words, style)
+            y += max(self._flag_height(press, w, width, s) for _, w, s in line)
+        return y
+
+    def _draw_flag(self, press: Press, x: float, y: float, width: float, tier: str, words: str, style: Style) -> None:
+        draw_tier(press, x, y - press.gap(1), press.gap(_TIER), tier)
+        press.text(x + press.gap(_TIER + 4), y, width - press.gap(_TIER + 4), words, style)
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,7 +126,7 @@ class SeeFirst:
 
 @dataclass(frozen=True, slots=True)
 class DueList:
-    """Due items in order of time, in two columns."""
+    """Due items in order of time, in columns."""
 
     items: Sequence[str]
 
@@ -96,18 +134,23 @@ class DueList:
         return max(sum(self._high(press, i, width) for i in part) for part in self._columns()) if self.items else 0.0
 
     def _columns(self) -> list[Sequence[str]]:
-        half = -(-len(self.items) // 2)
-        return [self.items[:half], self.items[half:]]
+        per = -(-len(self.items) // _DUE_COLUMNS)
+        return [self.items[i : i + per] for i in range(0, len(self.items), per)]
+
+    def _width(self, press: Press, width: float) -> float:
+        return (width - press.gap(12) * (_DUE_COLUMNS - 1)) / _DUE_COLUMNS
 
     def _high(self, press: Press, item: str, width: float) -> float:
-        return press.height(item, BODY, (width - press.gap(14)) / 2) + press.gap(1)
+        return press.height(item, BODY, self._width(press, width)) + press.gap(0.5)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
-        each = (width - press.gap(14)) / 2
+        each = self._width(press, width)
         for n, part in enumerate(self._columns()):
-            top = y
+            top, left = y, x + n * (each + press.gap(12))
             for item in part:
-                top += press.text(x + n * (each + press.gap(14)), top, each, item, BODY) + press.gap(1)
+                style = STRONG if item.endswith("OVERDUE") else BODY
+                press.text(left, top, each, item, style)
+                top += self._high(press, item, width)
 
 
 def ward_blocks(page: WardPage) -> list[Block]:
@@ -138,8 +181,9 @@ def split_ward(
     room = high - signed.height(at, width)
     for block in blocks:
         if current and height_of([*current, block], at, width) > room:
+            carried = [current.pop()] if isinstance(current[-1], Heading) else []  # no heading alone at the foot
             pages.append((at.scale, current))
-            current = []
+            current = carried
         current.append(block)
     return [*pages, (at.scale, current)]
 

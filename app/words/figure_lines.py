@@ -173,16 +173,18 @@ class FigureLines:
         words = [self.step(s) for s in steps]
         return ", ".join([*words[:1], *(_lowered(w) for w in words[1:])])
 
-    def verdict(self, r: ResponseFigure) -> str:
-        """The headline with the gas it rests on, by how much, after how long."""
+    def verdict(self, r: ResponseFigure, *, brief: bool = False) -> str:
+        """The headline with the gas it rests on, by how much, after how long; `brief` leaves out its state."""
         judged = next((g for g in r.gases if g.at == r.headline_gas_at), None)
         if judged is None:
             why = " ".join(sentence(m, self.reader) for m in r.why)
             return f"{self.tr(r.headline)}. {why}".rstrip(". ") + "."
-        text = f"{self.tr(r.headline)}: {self.deltas(judged)}"
-        return f"{text} ({self.arms(judged)})." if self.arms(judged) else f"{text}."
+        text = f"{self.tr(r.headline)}: {self.deltas(judged, with_state=not brief)}"
+        agree = {judged.co2_arm, judged.oxygen_arm} - {None} == {judged.verdict}
+        arms = "" if brief and agree else self.arms(judged)
+        return f"{text} ({arms})." if arms else f"{text}."
 
-    def deltas(self, g: JudgedGas) -> str:
+    def deltas(self, g: JudgedGas, *, with_state: bool = True) -> str:
         """By how much a gas differs from the baseline, and when it was taken."""
         parts = []
         if g.delta_ph is not None:
@@ -193,7 +195,7 @@ class FigureLines:
             parts.append(f"P/F {self.pressure(g.delta_pf_mmHg, sign=True)}")
         timing = {"early": self.tr("early"), "late": self.tr("late")}.get(g.timing, "")
         when = f"{self.tr('after')} {formats.minutes(g.minutes)}{', ' + timing if timing else ''}"
-        state = f", {self.tr('gas')} {self.tr(g.state)}" if g.state else ""
+        state = f", {self.tr('gas')} {self.tr(g.state)}" if g.state and with_state else ""
         return f"{', '.join(parts) or self.tr('no difference known')} {when}{state}"
 
     def arms(self, g: JudgedGas) -> str:

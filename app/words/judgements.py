@@ -23,14 +23,12 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.off_support": "Taken off support.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
     "evidence.overdue": "{what:due} was due by {until:time}.",
-    "evidence.range": "Range {low:0} to {high:0} %{prescribed:pick yes=, prescribed;no=, by risk: none prescribed}.",
-    "evidence.score": "{score:name} [[{points:trim} points]]{points:pick none=not complete;else=} "
-        "(lowest {lowest:trim}, highest {highest:trim}) at {at:time}, limit {limit:trim}"
-        "[[; missing: {missing:list}]].",
+    "evidence.score": "{score:name}[[ {points:trim} points]][[!points| between {lowest:trim} and {highest:trim}]] "
+        "at {at:time}, limit {limit:trim}[[; missing: {missing:list}]].",
     "evidence.share": "{percent:0} % of breaths, limit {limit:0} %, over {minutes:minutes}.",
     "evidence.stale": "{quantity:name} of {at:time} is {age_min:minutes} old.",
     "evidence.success": "Not acidotic from {since:time} for {hours:hours}.",
-    "evidence.support": "{quantity:name}[[ {value:q}]]{value:pick none= not set: one pressure;else=}, "
+    "evidence.support": "{quantity:name}[[ {value:q}]][[!value| not set, one pressure]], "
         "{relation} {limit:q}.",
     "evidence.support_ends": "Support ends at {at:time}.",
     "evidence.sustained": "{quantity:name} {relation} {limit:q} for {minutes:minutes} since {since:time}"
@@ -60,7 +58,7 @@ DUE: Final[dict[str, str]] = {
     "due.oxygen_review": "{marker:marker} since {since:time}.",
     "due.probable_break": "A break that nobody logged is probable from {break_at:time}[[ to {end_at:time}]].",
     "due.reassessment": "After the settings of {anchor_at:time}[[; last looked at {last_at:time}]].",
-    "due.repeat_gas": "The gas of {gas_at:time} was poor: pH {ph:2}[[, {state:" + _STATE + "}]].",
+    "due.repeat_gas": "After the gas of {gas_at:time}: pH {ph:2}[[, {state:" + _STATE + "}]].",
     "due.skin_check": "Skin under the mask last seen, or support begun, at {last_at:time}.",
     "due.spo2_recheck": "One reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",
 }  # fmt: skip

@@ -36,6 +36,9 @@ TEMPLATES: Final[dict[str, str]] = {
         "'{episode}' cannot name an episode: one word of at most {accepted} printable characters is accepted.",
     "episode.exists": "Episode {episode} exists already. Name {accepted}.",
     "episode.unknown": "There is no episode '{episode}' in this store. Known: {accepted}.",
+    "flag.no_reason": "Settling a flag needs its reason: {accepted}.",
+    "flag.not_open": "The flag '{marker:marker}' is not open: it is {state}.",
+    "flag.unknown": "Episode {episode} has no flag {flag}.",
     "instant.in_future": "The time {value} lies in the future: it is {now} now. Accepted: {accepted}.",
     "instant.no_offset":
         "The time '{value}' has no offset. Accepted: ISO 8601 with offset, e.g. 2026-03-28T02:10+00:00.",

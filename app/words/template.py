@@ -2,6 +2,7 @@
 
     "{channel:name} {value} is below {low:0}."     a value, and after the colon how it is written
     "[[ Recorded by {by}.]]"                        left out when a value inside is absent
+    "[[!by| Nobody said who.]]"                     only there when that value is absent
     "{where:pick below=under;above=over}"          a word for a value that is one of a few
 
 How values are written (see `_WRITERS`): `time` an instant, `clock` its hour and minute, `0` to `3` fixed
@@ -29,6 +30,7 @@ _log = logging.getLogger("luffmark")
 
 FIELD = re.compile(r"\{(\w+)(?::([^{}]*))?\}")
 _OPTIONAL = re.compile(r"\[\[(.*?)\]\]", re.DOTALL)
+_WHEN_ABSENT = re.compile(r"!(\w+)\|(.*)", re.DOTALL)
 MISSING = "?"
 
 
@@ -84,6 +86,8 @@ def fill(template: str, values: Mapping[str, Value], reader: Reader) -> str:
     """The sentence of a template. A value that is not there is written `?` and logged; it never raises."""
 
     def optional(match: re.Match[str]) -> str:
+        if only := _WHEN_ABSENT.match(match[1]):
+            return only[2] if _is_absent(values.get(only[1])) else ""
         absent = any(_is_absent(values.get(f[1])) for f in FIELD.finditer(match[1]))
         return "" if absent else match[1]
 

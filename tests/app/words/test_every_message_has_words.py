@@ -22,7 +22,7 @@ ROOT = Path(__file__).parents[3]
 MAKERS = {"Message", "refuse", "store_error"}
 KEY = re.compile(r"[a-z][a-z0-9_]*\.[a-z][a-z0-9_]*")
 NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*")
-LOG = {"entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo", "episode.begin"}
+LOG = {"flag.transitions", "entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo", "episode.begin"}
 """Names of operations in the ledger, written like keys."""
 
 POLICY = shipped_policy()

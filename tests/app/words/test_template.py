@@ -53,3 +53,22 @@ def test_a_sentence_passes_through_the_readers_language() -> None:
 def test_markup_in_a_value_stays_text() -> None:
     text = sentence(Message("line.word_unknown", {"word": "<b>x</b>", "accepted": "16/6"}))
     assert "<b>x</b>" in text, "escaping is the business of the place that shows rich text"
+
+
+def test_a_part_can_stand_only_where_a_value_is_absent() -> None:
+    text = "{score}[[ {points}]][[!points| between {low} and {high}]]"
+    assert template.fill(text, {"score": "X", "points": 3.0, "low": 3.0, "high": 3.0}, Reader()) == "X 3"
+    assert template.fill(text, {"score": "X", "points": None, "low": 1.0, "high": 5.0}, Reader()) == "X between 1 and 5"
+
+
+def test_moments_near_the_page_are_told_by_the_clock_alone() -> None:
+    at = parse("2026-03-28T02:10:00Z")
+    reader = Reader(near=(at - 10, at + 10))
+    assert template.fill("{at:time}", {"at": at}, reader) == "02:10"
+    assert template.fill("{at:time}", {"at": at + 20}, reader) == "28-Mar-2026 02:10"
+
+
+def test_a_ph_is_told_with_the_digits_it_was_reported_in() -> None:
+    values = {"quantity": "ph", "value": 7.345, "text": "7.345"}
+    assert template.fill("{value:qt}", values, Reader()) == "7.345"
+    assert template.fill("{value:qt}", values | {"text": None}, Reader()) == "7.35"
