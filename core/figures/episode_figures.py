@@ -1,14 +1,16 @@
 """The figures of one episode as of one moment, computed in stages.
 
-    record -> gases -> anchors and responses -> trends -> scores -> markers -> due items -> concern and levers
+    record -> gases -> anchors and responses -> scores -> trends -> markers -> due items -> concern and levers
 
-Each stage reads the context that the earlier ones filled and makes a new one.
+Each stage reads the context that the earlier ones filled and makes a new one. The stages up to the scores may be
+kept (`stage_cache`): they change only when the record does or a window opens or closes.
 """
 
 from __future__ import annotations
 
 from dataclasses import replace
 
+from core.figures.stage_cache import StageCache
 from core.judgement.anchors import find_anchors
 from core.judgement.concern import concern
 from core.judgement.context import Context
@@ -23,7 +25,7 @@ from core.judgement.markers.observed import Observed
 from core.judgement.oxygenation_findings import oxygenation_figure
 from core.judgement.policy import Policy
 from core.judgement.response import judge_responses
-from core.judgement.score_findings import with_scores
+from core.judgement.score_findings import with_rox, with_scores
 from core.judgement.score_inputs import barriers
 from core.judgement.shapes import EpisodeFigures, ExpectedCO2, RatioFigure
 from core.judgement.support_findings import support_figure
@@ -64,10 +66,19 @@ def trend_stage(ctx: Context) -> Context:
     return replace(ctx, pf=ratios["pf"], sf=ratios["sf"], rox=ratios["rox"], leak=leak_figure(ctx))
 
 
-def judged(episode: Episode, as_of: Instant, policy: Policy) -> Context:
-    """Everything that markers and due items read."""
-    ctx = trend_stage(response_stage(gas_stage(record_stage(episode, as_of, policy))))
+def early_stages(episode: Episode, as_of: Instant, policy: Policy) -> Context:
+    """Record, gases, anchors, responses and scores: what stands until something new happens or a window turns."""
+    ctx = response_stage(gas_stage(record_stage(episode, as_of, policy)))
     return with_scores(ctx, ctx.anchors)
+
+
+def judged(episode: Episode, as_of: Instant, policy: Policy, cache: StageCache | None = None) -> Context:
+    """Everything that markers and due items read."""
+    if cache is None:
+        early = early_stages(episode, as_of, policy)
+    else:
+        early = cache.early_stages(episode, as_of, policy, early_stages)
+    return with_rox(trend_stage(early))
 
 
 def channel_trends(ctx: Context) -> dict[str, RatioFigure]:
@@ -82,12 +93,15 @@ def expected_co2(ctx: Context) -> ExpectedCO2 | None:
     return expected(ctx, acting[-1]) if acting else None
 
 
-def episode_figures(episode: Episode, as_of: Instant, policy: Policy) -> EpisodeFigures:
+def episode_figures(
+    episode: Episode, as_of: Instant, policy: Policy, cache: StageCache | None = None
+) -> EpisodeFigures:
     """Everything computed for one episode as of one moment.
 
-    `episode` may hold later happenings: they are cut off first, so nothing later can leak into a figure.
+    `episode` may hold later happenings: they are cut off first, so nothing later can leak into a figure. A
+    `cache` keeps the early stages of an unchanged record; the figures are the same with and without one.
     """
-    ctx = judged(episode, as_of, policy)
+    ctx = judged(episode, as_of, policy, cache)
     seen = Observed(ctx)
     flags = evaluate(ctx, seen)
     due = due_items(ctx, flags, seen)

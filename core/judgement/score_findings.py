@@ -1,4 +1,4 @@
-"""All scores of an episode: HACOR and its update, the COPD failure chart, NEWS2, ROX."""
+"""All scores of an episode: HACOR and its update, the COPD failure chart, NEWS2; ROX once its trend is known."""
 
 from __future__ import annotations
 
@@ -36,11 +36,15 @@ def with_scores(ctx: Context, anchors: tuple[Anchor, ...]) -> Context:
         "hacor": at_gases[gas.at] if gas is not None else NO_GAS,
         "hacor_updated": _updated(ctx, gas, walls) if gas is not None else NO_GAS,
         "news2": news2_latest(ctx, walls),
-        "rox": rox_figure(ctx),
     }
     if ctx.indication == "copd" and gas is not None:
         scores["copd_failure"] = _copd(ctx, gas, walls)
     return replace(ctx, scores=scores, hacor_at_gases=at_gases)
+
+
+def with_rox(ctx: Context) -> Context:
+    """The context with ROX as a score, once its trend is known."""
+    return replace(ctx, scores={**ctx.scores, "rox": rox_figure(ctx)})
 
 
 def _updated(ctx: Context, gas: GasFigure, walls: Walls) -> ScoreFigure:

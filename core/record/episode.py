@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -40,16 +41,16 @@ class Series:
 
     def until(self, at: Instant) -> Series:
         """What had happened by `at`, that moment included."""
-        return self.cut(slice(0, int(np.searchsorted(self.t, at, side="right"))))
+        return self.cut(slice(0, int(self.t.searchsorted(at, side="right"))))
 
     def between(self, start: Instant, end: Instant) -> Series:
         """From `start` to `end`, both included."""
-        i, j = np.searchsorted(self.t, [start, end + 1])
+        i, j = self.t.searchsorted([start, end + 1])
         return self.cut(slice(int(i), int(j)))
 
     def last_at_or_before(self, at: Instant) -> int:
         """The index of the newest value at or before `at`; -1 when there is none."""
-        return int(np.searchsorted(self.t, at, side="right")) - 1
+        return int(self.t.searchsorted(at, side="right")) - 1
 
     @property
     def spots(self) -> Series:
@@ -80,12 +81,16 @@ class Words:
 
     def until(self, at: Instant) -> Words:
         """What had happened by `at`, that moment included."""
-        n = int(np.searchsorted(self.t, at, side="right"))
+        n = self.count_until(at)
         return Words(self.t[:n], self.v[:n], self.origin[:n])
+
+    def count_until(self, at: Instant) -> int:
+        """How many had happened by `at`, that moment included."""
+        return int(self.t.searchsorted(at, side="right"))
 
     def at(self, at: Instant) -> str | None:
         """The newest text at or before `at`."""
-        n = int(np.searchsorted(self.t, at, side="right"))
+        n = self.count_until(at)
         return self.v[n - 1] if n else None
 
     def __len__(self) -> int:
@@ -95,7 +100,7 @@ class Words:
 NO_WORDS = Words(np.empty(0, np.int64), (), np.empty(0, np.int32))
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Episode:
     """One episode of support. `standing` are the value entries that count, by time; `transitions` are the
     flag and due entries. Numbers are in `series`, choices, texts and events in `words`."""
@@ -131,7 +136,7 @@ class Episode:
         """What the ward calls this episode; its key where no label was given."""
         return self.latest_text("label") or self.key
 
-    @property
+    @cached_property
     def first_at(self) -> Instant | None:
         """The first moment that anything but a profile fact was logged for; None for an empty record."""
         moments = [int(s.t[0]) for k, s in self.series.items() if len(s) and not _is_profile(k)]

@@ -42,9 +42,7 @@ class Hindsight:
         return found
 
 
-def hindsight(
-    entries: Iterable[Entry], episode: str, head: int, until: Instant
-) -> tuple[Hindsight, ...]:
+def hindsight(entries: Iterable[Entry], episode: str, head: int, until: Instant) -> tuple[Hindsight, ...]:
     """What entries recorded after the sequence `head` changed of what had happened by `until`, by time.
 
     Only values are compared; flags and due items follow from them. Late entries that were withdrawn again since are

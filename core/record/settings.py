@@ -77,7 +77,7 @@ class Steps:
 
     def at(self, at: Instant) -> float:
         """The value in force at a moment, that moment's own change included; NaN before the first."""
-        i = int(np.searchsorted(self.t, at, side="right")) - 1
+        i = int(self.t.searchsorted(at, side="right")) - 1
         return float(self.v[i]) if i >= 0 else nan
 
     def before(self, at: Instant) -> float:
@@ -140,8 +140,18 @@ class SettingsInForce:
             return self.fio2 if channel == "fio2" else self.o2_flow
         return self._plain[channel]
 
+    @cached_property
+    def _seen(self) -> dict[Instant, Settings]:
+        return {}
+
     def at(self, at: Instant) -> Settings:
         """The settings in force at a moment, changes of that moment included."""
+        seen = self._seen.get(at)
+        if seen is None:
+            seen = self._seen[at] = self._at(at)
+        return seen
+
+    def _at(self, at: Instant) -> Settings:
         plain = self._plain
         return Settings(
             mode=self.episode.text("mode").at(at),
