@@ -47,6 +47,7 @@ def test_oxygen_above_need_within_range_and_below() -> None:
     assert keys(found()["fio2"])[0] == "spo2_not_known"
     full = found("03:55 spo2 84", start="mode CPAP cpap 8 fio2 100%")["fio2"]
     assert not full.can_act
+    assert "fio2_at_maximum" in keys(full)
     room = found("03:55 spo2 97", start="mode CPAP cpap 8 fio2 21%")["fio2"]
     assert not room.can_act
 

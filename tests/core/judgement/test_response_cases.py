@@ -126,6 +126,7 @@ def _gas_facts(g: JudgedGas) -> dict[str, object]:
         "minutes": f"{g.minutes:g}", "timing": g.timing, "verdict": _word(g.verdict), "co2": _word(g.co2_arm),
         "oxygen": _word(g.oxygen_arm), "state": _word(g.state), "attributable": _yes(g.attributable),
         "since": _word(g.since_start.verdict), "lost": _yes(g.since_start.gain_lost),
-        "also": {s.channel for s in g.also_changed}, "dpf": _word(g.delta_pf_mmHg),
+        "also": {s.channel for s in g.also_changed}, "n_also": str(len(g.also_changed)),
+        "dpf": _word(g.delta_pf_mmHg),
         "why": {m.key.removeprefix("response.") for m in g.why},
     }  # fmt: skip

@@ -46,6 +46,7 @@ def test_saturation_above_97_gives_no_sf_but_a_rox() -> None:
     found = ratio_trends(context(SUPPORT + "02:00 spo2 94 rr 25\n03:00 spo2 98 rr 20", "03:10"))
     assert found["sf"].latest is None
     assert found["sf"].reasons["latest"].key == "trend.spo2_above_ceiling"
+    assert found["sf"].n == 1
     assert found["rox"].latest == pytest.approx(98 / 0.5 / 20)
 
 
