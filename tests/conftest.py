@@ -3,6 +3,13 @@
 import os
 
 import pytest
+from hypothesis import HealthCheck, settings
+
+# A loaded machine is no finding, so no deadline. In CI the examples are fixed: a random find belongs to a person.
+settings.register_profile(
+    "luffmark", deadline=None, derandomize="CI" in os.environ, suppress_health_check=[HealthCheck.too_slow]
+)
+settings.load_profile("luffmark")
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 os.environ["QT_SCALE_FACTOR"] = "1"
