@@ -19,5 +19,6 @@ os.environ["QT_SCALE_FACTOR"] = "1"
 def own_folders(tmp_path_factory: pytest.TempPathFactory, monkeypatch: pytest.MonkeyPatch) -> None:
     """No test reads or writes the user's real settings, stores or cache."""
     home = tmp_path_factory.mktemp("home")
-    for name in ("HOME", "XDG_DATA_HOME", "XDG_CONFIG_HOME", "XDG_CACHE_HOME", "XDG_STATE_HOME", "LOCALAPPDATA", "APPDATA"):
+    xdg = [f"XDG_{kind}_HOME" for kind in ("DATA", "CONFIG", "CACHE", "STATE")]
+    for name in ("HOME", "LOCALAPPDATA", "APPDATA", *xdg):
         monkeypatch.setenv(name, str(home))
