@@ -93,7 +93,11 @@ def _of_any_sample(gas: GasFigure) -> dict[str, DerivedFigure]:
             "sbe_siggaard", acid_base.standard_base_excess_siggaard, base, at, caveats=_FROM_MEMORY
         ),
         "sao2_expected_percent": derive(
-            "saturation_of_po2_at_ph", saturation.severinghaus_saturation_at_ph, curve, at, caveats=_FROM_MEMORY
+            "saturation_of_po2_at_ph",
+            saturation.severinghaus_saturation_at_ph,
+            curve,
+            at,
+            caveats=_FROM_MEMORY,
         ),
     }
 

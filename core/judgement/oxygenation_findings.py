@@ -85,7 +85,9 @@ def _mean_pressure(ctx: Context, at: Instant, walls: Walls) -> DerivedFigure:
         missing = Message("support.not_recorded", {"channel": "cpap"}) if isnan(now.low_pressure) else None
         return DerivedFigure(_MEAN, inputs["cpap"].value, at, inputs, reason=missing)
     if not now.is_bilevel or now.mode == "volume-assured":
-        return DerivedFigure(_MEAN, None, at, reason=Message("oxygenation.no_fixed_pressure", {"mode": now.mode}))
+        return DerivedFigure(
+            _MEAN, None, at, reason=Message("oxygenation.no_fixed_pressure", {"mode": now.mode})
+        )
     rate = rate_at(ctx, at, walls)
     inputs = {
         "ipap": FigureInput(_number(now.ipap), at), "epap": FigureInput(_number(now.epap), at),
@@ -199,7 +201,10 @@ def _global(ctx: Context, gas: GasFigure | None, sat: _Saturation) -> DerivedFig
         return replace(shut, at=at, inputs=inputs, reason=support.reason)
     pf, sf, spo2 = (_value(inputs.get(name)) for name in ("pf", "sf", "spo2"))
     band = Band(int(definitions.global_not_intubated(pf, sf, spo2, support.peep, support.flow)))
-    supported = {"epap": FigureInput(_number(support.peep), at), "o2_flow": FigureInput(_number(support.flow), at)}
+    supported = {
+        "epap": FigureInput(_number(support.peep), at),
+        "o2_flow": FigureInput(_number(support.flow), at),
+    }
     inputs |= {name: given for name, given in supported.items() if given.value is not None}
     return DerivedFigure("global_band", _BANDS[band], at, inputs, caveats=(_CRITERION,))
 

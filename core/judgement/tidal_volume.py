@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from core.judgement.context import Context
 from core.judgement.derived import FigureInput
-from core.judgement.leak_trend import leak_definition, limits_at
+from core.judgement.leak_trend import limits_at
 from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.score_inputs import Walls
 from core.physiology.tidal_volume_trust import Trust, trust, unintentional_leak, why_doubtful
@@ -47,13 +47,8 @@ def tidal_volume_trust_series(ctx: Context) -> tuple[Times, NDArray[np.int8]]:
 def codes_of(ctx: Context, t: Times, vte: Values, spot: Flags) -> NDArray[np.int8]:
     """Codes of `Trust` of volumes in mL at times, all of shape (n,). `spot`: logged by a person."""
     reach = np.where(spot, _median_span(ctx), LEAK_OF_THE_MINUTE)
-    leak = _leak_at(ctx, t, reach)
+    leak, unintentional = _leak_at(ctx, t, reach)
     rules = ctx.policy.leak
-    definition = leak_definition(ctx)
-    port: Values = np.full(t.shape, np.nan)
-    if definition == "total":
-        port = limits_at(ctx, t, "total")[0] - rules.unintentional_limit_L_per_min.value
-    unintentional = unintentional_leak(leak, definition or "not known", port)
     void = in_any(t, off_mask(ctx)) | (leak >= rules.device_ceiling_L_per_min.value)
     limit = rules.doubt_tidal_volume_above_L_per_min.value
     return trust(vte, unintentional, ctx.settings.steps("ti").on(t), void, limit)
@@ -77,7 +72,13 @@ def newest(ctx: Context, channel: str) -> Instant | None:
 
 
 def measured_at(
-    ctx: Context, channel: str, at: Instant, walls: Walls, *, rate: float | None = None, code: Trust | None = None
+    ctx: Context,
+    channel: str,
+    at: Instant,
+    walls: Walls,
+    *,
+    rate: float | None = None,
+    code: Trust | None = None,
 ) -> Measured | None:
     """A volume of the quarter of an hour up to a moment, not reaching back across an anchor or a break.
 
@@ -121,13 +122,40 @@ def _median_span(ctx: Context) -> int:
     return int(ctx.policy.trend.device_median_min.value * MINUTE)
 
 
-def _leak_at(ctx: Context, t: Times, reach: NDArray[np.int64]) -> Values:
-    """The leak nearest to each time, NaN where none is within reach."""
+def _leak_at(ctx: Context, t: Times, reach: NDArray[np.int64]) -> tuple[Values, Values]:
+    """The leak nearest to each time and the unintentional part of it; NaN where none is within reach."""
     series = ctx.episode.number("leak")
     series = series.cut(np.isfinite(series.v)) if len(series) else series
     if not len(series) or not t.size:
-        return np.full(t.shape, np.nan)
+        unknown: Values = np.full(t.shape, np.nan)
+        return unknown, unknown
     right = np.clip(np.searchsorted(series.t, t), 0, len(series) - 1)
     left = np.maximum(right - 1, 0)
     nearest = np.where(np.abs(series.t[left] - t) <= np.abs(series.t[right] - t), left, right)
-    return np.where(np.abs(series.t[nearest] - t) <= reach, series.v[nearest], np.nan)
+    times = series.t[nearest]
+    leak = np.where(np.abs(times - t) <= reach, series.v[nearest], np.nan)
+    return leak, _unintentional(ctx, times, leak)
+
+
+def _unintentional(ctx: Context, t: Times, leak: Values) -> Values:
+    """The unintentional part of leaks by what leak meant when each was measured; NaN where nobody said.
+
+    The first meaning that was stated holds for what came before it, too; another device may mean another thing.
+    """
+    said = ctx.episode.text("leak_definition")
+    out: Values = np.full(t.shape, np.nan)
+    if not len(said):
+        return out
+    meant = np.asarray(said.v)[np.maximum(np.searchsorted(said.t, t, side="right") - 1, 0)]
+    for definition in ("unintentional", "total"):
+        mine = meant == definition
+        if mine.any():
+            port = _port(ctx, t[mine]) if definition == "total" else np.nan
+            out[mine] = unintentional_leak(leak[mine], definition, port)
+    return out
+
+
+def _port(ctx: Context, t: Times) -> Values:
+    """The exhalation port's own leak at the time-weighted pressure of each moment."""
+    limits, _ = limits_at(ctx, t, "total")
+    return limits - ctx.policy.leak.unintentional_limit_L_per_min.value

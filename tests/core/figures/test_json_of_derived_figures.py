@@ -21,7 +21,10 @@ LOG = """
 
 
 def as_json():
-    vte, leak = device("vte", "02:00", [400.0] * 50 + [0.0] * 5 + [400.0] * 5), device("leak", "02:00", [12.0] * 60)
+    vte, leak = (
+        device("vte", "02:00", [400.0] * 50 + [0.0] * 5 + [400.0] * 5),
+        device("leak", "02:00", [12.0] * 60),
+    )
     figures = episode_figures(episode(LOG, samples=(vte, leak)), moment("03:00"), shipped_policy())
     return json.loads(json.dumps(to_json(figures, sentence), allow_nan=False))
 

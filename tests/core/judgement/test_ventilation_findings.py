@@ -103,7 +103,25 @@ def test_the_trust_of_every_minute_for_a_chart():
     t, codes = tidal_volume_trust_series(context(DEFINED, vte, leak))
     assert t.tolist() == vte.t.tolist()
     told = [Trust(c) for c in codes]
-    assert told == [Trust.TRUSTED, Trust.DOUBTFUL, Trust.VOID, Trust.VOID, Trust.VOID, Trust.VOID, Trust.NOT_KNOWN]
+    assert told == [
+        Trust.TRUSTED,
+        Trust.DOUBTFUL,
+        Trust.VOID,
+        Trust.VOID,
+        Trust.VOID,
+        Trust.VOID,
+        Trust.NOT_KNOWN,
+    ]
+
+
+def test_leak_is_read_by_what_it_meant_then():
+    """40 L/min in all is 14 unintentional beside the port; 40 unintentional is too much."""
+    vte, rate, leak = breaths(40.0)
+    log = START + "01:00 leak_definition total\n02:30 leak_definition unintentional\n02:30 device another\n"
+    t, codes = tidal_volume_trust_series(context(log, vte, rate, leak))
+    before = t < moment("02:30")
+    assert set(codes[before].tolist()) == {Trust.TRUSTED}
+    assert set(codes[~before].tolist()) == {Trust.DOUBTFUL}
 
 
 def test_the_leak_of_a_break_voids_and_a_minute_without_breath_is_no_volume():
