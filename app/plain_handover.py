@@ -62,13 +62,14 @@ def _episode(page: EpisodePage, unit: str) -> Iterator[str]:
         yield from _wrapped(f"{name}: {value}", "  ")
     yield from ("", "Settings now")
     yield from _wrapped(page.settings, "  ")
+    yield from _wrapped(page.leak, "  ")
     yield from ("", "Changes this shift and their responses")
     for c in page.changes:
         yield from _wrapped(f"{c.at} {c.what}. {c.response}", "  ")
     if not page.changes:
         yield "  No change of settings recorded this shift."
     yield from _gases(page.gases, unit)
-    yield from ("", "Leak and interface", *_wrapped(page.leak, "  "), "", "Flags")
+    yield from ("", "Flags")
     yield from _flags(page.flags)
     yield from ("", "Due in the next 4 h")
     for item in page.due or ("Nothing is due.",):

@@ -39,6 +39,7 @@ class FlagLine:
     evidence: str
     source: str
     is_open: bool
+    is_strongest: bool = True
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,6 +110,7 @@ class EpisodePage:
     left_out_gases: int = 0
     left_out_flags: int = 0
     left_out_checks: int = 0
+    left_out_evidence: int = 0
 
 
 @dataclass(frozen=True, slots=True)
@@ -351,7 +353,7 @@ class _Writer:
 
     def _flag(self, x: FlagFigure) -> FlagLine:
         return FlagLine(x.tier, self._lines.flag_head(x), self._lines.evidence(x), self._lines.certainty(x),
-                        x.state in ("raised", "seen"))  # fmt: skip
+                        x.state in ("raised", "seen"), x.strongest)  # fmt: skip
 
     def _care(self, s: ShiftFigures) -> Iterator[Fact]:
         record = self._h.records[s.episode].until(s.end)

@@ -30,69 +30,90 @@ _SMALL_PRINT = 0.86
 _CHART_KEY = "grey bands: pH 7.35 to 7.45, SpO2 target; dashed: changes; hollow: doubtful"
 _FEWEST_CHANGES = 4
 _FEWEST_GASES = 3
+_HIDDEN_EVIDENCE = "Evidence: see the record."
 
 
 @dataclass(frozen=True, slots=True)
 class Fitted:
-    """An episode's page as it fits: its scale, its blocks above and under the chart, and the chart's height."""
+    """An episode's page as it fits: its scale, its blocks above and under the chart, and the chart's height.
+
+    `overflow` holds blocks for a second page; it is empty unless nothing else made it fit.
+    """
 
     scale: float
     upper: tuple[Block, ...]
     chart: ChartBlock
     lower: tuple[Block, ...]
     remark: RuledBox
-    remark_high: float
+    overflow: tuple[Block, ...] = ()
 
 
-def fit_episode(
-    page: EpisodePage, press: Press, width: float, high: float, unit: str, signed: Signatures
-) -> Fitted:
-    """Make an episode's page fit its height: the largest scale that does, then fewer of the oldest rows."""
-    reduced = page
-    while True:
+@dataclass(frozen=True, slots=True)
+class Room:
+    """The room of a page: width and height in points, the unit of gas pressures, and who signs."""
+
+    width: float
+    height: float
+    unit: str
+    signed: Signatures
+
+
+def fit_episode(page: EpisodePage, press: Press, room: Room) -> Fitted:
+    """Make an episode's page fit: the largest scale that does, then fewer of the oldest rows, then two pages.
+
+    An open flag is never left out.
+    """
+    reduced: EpisodePage | None = page
+    least = page
+    while reduced is not None:
         for scale in SCALES:
-            fitted = _at_scale(reduced, press.at_scale(scale), width, high, unit, signed)
+            fitted = _at_scale(reduced, press.at_scale(scale), room)
             if fitted is not None:
                 return fitted
-        fewer = _fewer(reduced)
-        if fewer is None:
-            return _forced(reduced, press.at_scale(SCALES[-1]), width, unit)
-        reduced = fewer
+        least, reduced = reduced, _fewer(reduced)
+    return _on_two_pages(least, press.at_scale(SCALES[-1]), room)
 
 
-def _at_scale(
-    page: EpisodePage, press: Press, width: float, high: float, unit: str, signed: Signatures
-) -> Fitted | None:
-    upper, lower = tuple(upper_blocks(page)), tuple(lower_blocks(page, unit))
-    remark = RuledBox(page.remark)
-    fixed = height_of(upper, press, width) + height_of(lower, press, width) + signed.height(press, width)
-    heading = Heading("Remark").height(press, width)
-    room = high - fixed - heading - remark.height(press, width)
-    if room < (GOOD_CHART if press.scale > _SMALL_PRINT else LEAST_CHART):
+def _at_scale(page: EpisodePage, press: Press, room: Room) -> Fitted | None:
+    upper, lower, remark = tuple(upper_blocks(page)), tuple(lower_blocks(page, room.unit)), RuledBox(page.remark)
+    left = room.height - height_of((*upper, *lower), press, room.width) - _end_height(remark, press, room)
+    if left < (GOOD_CHART if press.scale > _SMALL_PRINT else LEAST_CHART):
         return None
-    chart = min(room, MOST_CHART)
-    return Fitted(press.scale, upper, ChartBlock(page.chart, chart), lower, remark,
-                  remark.height(press, width) + room - chart)  # fmt: skip
+    return Fitted(press.scale, upper, ChartBlock(page.chart, min(left, MOST_CHART)), lower, remark)
 
 
-def _forced(page: EpisodePage, press: Press, width: float, unit: str) -> Fitted:
-    upper, lower = tuple(upper_blocks(page)), tuple(lower_blocks(page, unit))
-    remark = RuledBox(page.remark)
-    return Fitted(press.scale, upper, ChartBlock(page.chart, LEAST_CHART), lower, remark, remark.height(press, width))
+def _end_height(remark: RuledBox, press: Press, room: Room) -> float:
+    """The remark with its heading, and the lines to sign."""
+    return height_of((Heading("Remark"), remark, room.signed), press, room.width)
+
+
+def _on_two_pages(page: EpisodePage, press: Press, room: Room) -> Fitted:
+    upper, lower, remark = tuple(upper_blocks(page)), tuple(lower_blocks(page, room.unit)), RuledBox(page.remark)
+    left = room.height - height_of(upper, press, room.width) - LEAST_CHART - _end_height(remark, press, room)
+    kept = 0
+    while kept < len(lower) and height_of(lower[: kept + 1], press, room.width) <= left:
+        kept += 1
+    while kept and isinstance(lower[kept - 1], Heading):
+        kept -= 1
+    return Fitted(press.scale, upper, ChartBlock(page.chart, LEAST_CHART), lower[:kept], remark, lower[kept:])
 
 
 def _fewer(page: EpisodePage) -> EpisodePage | None:
-    """The page with one of its oldest rows less; None where nothing may go. What was left out is said."""
-    if len(page.changes) > _FEWEST_CHANGES:
-        return replace(page, changes=page.changes[1:], left_out_changes=page.left_out_changes + 1)
+    """The page with a little less that the record holds anyway; None where nothing may go. It is said."""
+    if len(page.to_check) > 1:
+        return replace(page, to_check=page.to_check[:-1], left_out_checks=page.left_out_checks + 1)
     closed = [f for f in page.flags if not f.is_open]
     if closed:
         flags = tuple(f for f in page.flags if f is not closed[-1])
         return replace(page, flags=flags, left_out_flags=page.left_out_flags + 1)
+    weaker = [f for f in page.flags if not f.is_strongest and f.evidence != _HIDDEN_EVIDENCE]
+    if weaker:
+        flags = tuple(replace(f, evidence=_HIDDEN_EVIDENCE) if f is weaker[-1] else f for f in page.flags)
+        return replace(page, flags=flags, left_out_evidence=page.left_out_evidence + 1)
+    if len(page.changes) > _FEWEST_CHANGES:
+        return replace(page, changes=page.changes[1:], left_out_changes=page.left_out_changes + 1)
     if len(page.gases) > _FEWEST_GASES:
         return replace(page, gases=page.gases[1:], left_out_gases=page.left_out_gases + 1)
-    if len(page.to_check) > 1:
-        return replace(page, to_check=page.to_check[:-1], left_out_checks=page.left_out_checks + 1)
     return None
 
 
@@ -101,6 +122,7 @@ def upper_blocks(page: EpisodePage) -> Iterator[Block]:
     yield Facts(page.facts)
     yield Heading("Settings now")
     yield Text(page.settings, STRONG)
+    yield Text(page.leak)
     yield Heading("Changes this shift and their responses", _left_out(page.left_out_changes, "earlier change"))
     if page.changes:
         columns = (Column("When", 11), Column("What", 40), Column("What it did", 60))
@@ -119,8 +141,6 @@ def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
         yield gas_table(page.gases)
     else:
         yield Text("No gas recorded this shift or before it.")
-    yield Heading("Leak and interface")
-    yield Text(page.leak)
     yield Heading("Flags", _left_out(page.left_out_flags, "settled flag"))
     if page.flags:
         for flag in page.flags:
@@ -140,6 +160,9 @@ def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
 def flag_blocks(flag: FlagLine) -> Iterator[Block]:
     """One flag: its head, evidence and source."""
     tier, _, head = flag.head.partition(" ")
+    if flag.evidence == _HIDDEN_EVIDENCE:
+        yield TierMark(tier.lower(), f"{head}. {flag.evidence}", BODY)
+        return
     yield TierMark(tier.lower(), head, STRONG if flag.is_open else BODY)
     yield Text(f"{flag.evidence} {flag.source}".strip(), SMALL, 59)
 
@@ -170,17 +193,20 @@ def _left_out(count: int, what: str) -> str:
     return f"{count} {plural} not shown: see the record"
 
 
-def draw_episode(
-    fitted: Fitted, press: Press, x: float, y: float, width: float, bottom: float, signed: Signatures
-) -> None:
-    """Draw a fitted page between `y` and `bottom`."""
-    at = press.at_scale(fitted.scale)
+def draw_episode(fitted: Fitted, press: Press, x: float, y: float, bottom: float, room: Room) -> None:
+    """Draw a fitted page between `y` and `bottom`. The remark's box takes what room is left."""
+    at, width = press.at_scale(fitted.scale), room.width
     y = draw_all(fitted.upper, at, x, y, width)
     fitted.chart.draw(at, x, y, width)
     y = draw_all(fitted.lower, at, x, y + fitted.chart.high, width)
     heading = Heading("Remark", "" if fitted.remark.words else "none typed; room to write by hand")
     heading.draw(at, x, y, width)
     y += heading.height(at, width)
-    top_of_signatures = bottom - signed.height(at, width)
-    fitted.remark.draw_high(at, x, y, width, max(fitted.remark_high, top_of_signatures - y))
-    signed.draw(at, x, top_of_signatures, width)
+    top_of_signatures = bottom - room.signed.height(at, width)
+    fitted.remark.draw_high(at, x, y, width, top_of_signatures - y)
+    room.signed.draw(at, x, top_of_signatures, width)
+
+
+def draw_overflow(fitted: Fitted, press: Press, x: float, y: float, width: float) -> None:
+    """Draw what had no room on the episode's first page."""
+    draw_all(fitted.overflow, press.at_scale(1.0), x, y, width)

@@ -10,15 +10,15 @@ from PySide6.QtGui import QGuiApplication, QPagedPaintDevice, QPageLayout, QPage
 
 from app.operations.outcome import report
 from app.sheet.blocks import Signatures
-from app.sheet.content import SheetContent
-from app.sheet.pages import draw_episode, fit_episode
+from app.sheet.content import EpisodePage, SheetContent
+from app.sheet.pages import Fitted, Room, draw_episode, draw_overflow, fit_episode
 from app.sheet.press import SMALL, SUBTITLE, TITLE, Align, Press, Style
 from app.sheet.ward_sheet import draw_ward, split_ward
 from core.record.message import refuse
 
 PAPERS: Final = {"A4": QPageSize.PageSizeId.A4, "Letter": QPageSize.PageSizeId.Letter}
 DOTS_PER_INCH: Final = 1200
-_MARGIN: Final = 36.0
+_MARGIN: Final = 32.0
 _HEAD, _FOOT = 40.0, 27.0
 _SUBTITLE = 15.0
 """The height of the line under a title, which the ward's page does without."""
@@ -100,7 +100,9 @@ class _Job:
         self._number = 0
         ward = split_ward(content.ward, press, self._width, self._bottom - self._ward_top, self._signed)
         self._ward = ward
-        self._pages = len(ward) + len(content.episodes)
+        self._room = Room(self._width, self._bottom - self._top, content.gas_unit, self._signed)
+        self._fitted = [fit_episode(page, press, self._room) for page in content.episodes]
+        self._pages = len(ward) + sum(2 if f.overflow else 1 for f in self._fitted)
 
     def run(self) -> int:
         c, w = self._content, self._content.ward
@@ -108,11 +110,16 @@ class _Job:
             self._begin(w.title if n == 0 else f"{w.title}, continued", "", w.shift)
             signed = self._signed if n + 1 == len(self._ward) else None
             draw_ward(part, self._press, self._left, self._ward_top, self._width, self._bottom, signed)
-        for page in c.episodes:
-            self._begin(page.label, page.subtitle, page.standing)
-            fitted = fit_episode(page, self._press, self._width, self._bottom - self._top, c.gas_unit, self._signed)
-            draw_episode(fitted, self._press, self._left, self._top, self._width, self._bottom, self._signed)
+        for page, fitted in zip(c.episodes, self._fitted, strict=True):
+            self._episode(page, fitted)
         return self._pages
+
+    def _episode(self, page: EpisodePage, fitted: Fitted) -> None:
+        self._begin(page.label, page.subtitle, page.standing)
+        draw_episode(fitted, self._press, self._left, self._top, self._bottom, self._room)
+        if fitted.overflow:
+            self._begin(f"{page.label}, continued", page.subtitle, page.standing)
+            draw_overflow(fitted, self._press, self._left, self._top, self._width)
 
     def _begin(self, title: str, subtitle: str, standing: str) -> None:
         """A new page with its head and foot."""

@@ -12,7 +12,8 @@ from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Align, P
 SCALES = (1.08, 1.04, 1.0, 0.96, 0.92, 0.88, 0.85, 0.82, 0.79, 0.77, 0.75)
 LABEL = Style(11, True)
 _TIER = 50.0
-_DUE_COLUMNS = 3
+_MANY = 24
+"""More due items than these stand in four columns of small print."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -133,23 +134,29 @@ class DueList:
     def height(self, press: Press, width: float) -> float:
         return max(sum(self._high(press, i, width) for i in part) for part in self._columns()) if self.items else 0.0
 
+    def _count(self) -> int:
+        return 3 if len(self.items) <= _MANY else 4
+
     def _columns(self) -> list[Sequence[str]]:
-        per = -(-len(self.items) // _DUE_COLUMNS)
+        per = -(-len(self.items) // self._count())
         return [self.items[i : i + per] for i in range(0, len(self.items), per)]
 
+    def _style(self, item: str) -> Style:
+        size = BODY.size if len(self.items) <= _MANY else SMALL.size
+        return Style(size, item.endswith("OVERDUE"))
+
     def _width(self, press: Press, width: float) -> float:
-        return (width - press.gap(12) * (_DUE_COLUMNS - 1)) / _DUE_COLUMNS
+        return (width - press.gap(10) * (self._count() - 1)) / self._count()
 
     def _high(self, press: Press, item: str, width: float) -> float:
-        return press.height(item, BODY, self._width(press, width)) + press.gap(0.5)
+        return press.height(item, self._style(item), self._width(press, width)) + press.gap(0.5)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         each = self._width(press, width)
         for n, part in enumerate(self._columns()):
-            top, left = y, x + n * (each + press.gap(12))
+            top, left = y, x + n * (each + press.gap(10))
             for item in part:
-                style = STRONG if item.endswith("OVERDUE") else BODY
-                press.text(left, top, each, item, style)
+                press.text(left, top, each, item, self._style(item))
                 top += self._high(press, item, width)
 
 
@@ -162,7 +169,7 @@ def ward_blocks(page: WardPage) -> list[Block]:
     blocks.append(DueList(page.due) if page.due else Text("Nothing is due."))
     if page.missing:
         blocks.append(Heading("Missing from the record"))
-        blocks += [Text(m, SMALL) for m in page.missing]
+        blocks.append(Text(" ".join(page.missing), SMALL))
     return blocks
 
 
