@@ -37,7 +37,18 @@ def medians(t: Times, v: Values, span: Instant) -> Medians:
     starts = np.flatnonzero(np.concatenate(([True], np.diff(bins) > 0)))
     ends = np.concatenate((starts[1:], [bins.size]))
     size = ends - starts
-    ordered = v[np.lexsort((v, bins))]
-    middle = (ordered[starts + (size - 1) // 2] + ordered[starts + size // 2]) / 2.0
+    middle = _middles(v, bins, starts, size)
     offset = np.add.reduceat(t - t[0], starts) // size  # relative to the first: sums of instants would overflow
     return Medians(bins[starts], t[starts], t[ends - 1], t[0] + offset, middle)
+
+
+def _middles(v: Values, bins: Times, starts: Times, size: Times) -> Values:
+    """The median of each bin. Bins of one size, as a device writes them, are sorted as the rows of a table."""
+    inner = size[1:-1]
+    if inner.size and bool((inner == inner[0]).all()):
+        k = int(inner[0])
+        rows = np.sort(v[starts[1] : starts[-1]].reshape(-1, k), axis=1)
+        middle = (rows[:, (k - 1) // 2] + rows[:, k // 2]) / 2.0
+        return np.concatenate(([np.median(v[: starts[1]])], middle, [np.median(v[starts[-1] :])]))
+    ordered = v[np.lexsort((v, bins))]
+    return np.asarray((ordered[starts + (size - 1) // 2] + ordered[starts + size // 2]) / 2.0)

@@ -44,6 +44,12 @@ class VitalsNear:
         spo2 = self.episode.number("spo2")
         return _sources(spo2.spots, spo2.machine)
 
+    @cached_property
+    def _reach(self) -> tuple[Instant, Instant]:
+        """How far a spot value may lie away, and how long a device's values are taken together."""
+        policy = self.policy
+        return int(policy.freshness.vitals_min.value * MINUTE), int(policy.trend.device_median_min.value * MINUTE)
+
     def rate(self, at: Instant, low: Instant, high: Instant) -> Found | None:
         """The respiratory rate nearest to `at`, later than `low` and not later than `high`."""
         return self._near(self._rates, at, low, high)
@@ -53,11 +59,10 @@ class VitalsNear:
         return self._near(self._saturations, at, low, high)
 
     def _near(self, sources: _Sources, at: Instant, low: Instant, high: Instant) -> Found | None:
-        reach = int(self.policy.freshness.vitals_min.value * MINUTE)
+        reach, span = self._reach
         found = _nearest(sources, at, max(low, at - reach - 1), min(high, at + reach))
         if found is not None:
             return found
-        span = int(self.policy.trend.device_median_min.value * MINUTE)
         for machine in sources.machines:
             found = _median_before(machine, max(low, at - span), min(high, at))
             if found is not None:

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from core.judgement.device_medians import medians
 from core.judgement.trend import channel_trend, rates_at, ratio_trends
@@ -101,3 +103,18 @@ def test_medians_take_the_middle_and_ignore_silence() -> None:
     assert found.v.tolist() == [20.0, 40.0]
     assert found.last.tolist() == [14 * MINUTE, 29 * MINUTE]
     assert medians(t[:0], v[:0], 15 * MINUTE).v.size == 0
+
+
+@given(st.lists(st.integers(0, 200), min_size=1, max_size=120, unique=True), st.integers(1, 30))
+def test_medians_agree_with_numpy_bin_by_bin(moments: list[int], span: int) -> None:
+    t = np.array(sorted(moments), np.int64)
+    v = np.sin(t * 1.7) * 100
+    found = medians(t, v, span)
+    assert found.v.tolist() == pytest.approx([float(np.median(v[t // span == b])) for b in np.unique(t // span)])
+
+
+def test_medians_of_regular_samples_agree_with_numpy() -> None:
+    t = np.arange(7, 1007, dtype=np.int64)
+    v = np.cos(t * 0.9)
+    wanted = [float(np.median(v[t // 15 == b])) for b in np.unique(t // 15)]
+    assert medians(t, v, 15).v.tolist() == pytest.approx(wanted)
