@@ -17,7 +17,7 @@ NO_SKIN_UNDER = frozenset({"helmet", "mouthpiece"})
 
 def _begun(seen: Observed) -> Instant | None:
     """From when care is counted: the start, or the first entry where support ran already."""
-    start, first = seen.support.start, seen.episode.first_at
+    start, first = seen.support.start, seen.first_at
     if start is None or start > seen.as_of:
         return None
     return start if first is None else max(start, first)
@@ -42,7 +42,7 @@ def skin_items(seen: Observed) -> Iterator[Item]:
 def assessed(seen: Observed) -> list[Instant]:
     """The moments at which a person looked at the patient: a review, a check, or a counted rate."""
     words = (seen.episode.text(c).t for c in ("review", "checked_no_change"))
-    counted = seen.series("rr").spots.t
+    counted = seen.spots("rr").t
     return sorted({int(t) for t in np.concatenate((*words, counted))})
 
 

@@ -6,6 +6,7 @@ that one change after another cannot put a gas off for ever. An early gas (1-29 
 
 from __future__ import annotations
 
+from bisect import bisect_left
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from math import isnan
@@ -64,16 +65,21 @@ def _next_first(seen: Observed, i: int) -> Instant | None:
 
 def _closing(seen: Observed, counts_from: Instant, before: Instant | None) -> GasFigure | None:
     """The first arterial or capillary gas on support that counts: whole minutes, the next anchor's own included."""
-    for gas in seen.on_support_gases:
-        if gas.at // MINUTE >= counts_from // MINUTE and (gas.ph is not None or gas.paco2_mmHg is not None):
-            return gas if before is None or gas.at // MINUTE <= before // MINUTE else None
-    return None
+    gases = seen.once(_counting)
+    i = bisect_left(gases, counts_from // MINUTE, key=lambda g: g.at // MINUTE)
+    if i == len(gases):
+        return None
+    return gases[i] if before is None or gases[i].at // MINUTE <= before // MINUTE else None
+
+
+def _counting(seen: Observed) -> list[GasFigure]:
+    return [g for g in seen.on_support_gases if g.ph is not None or g.paco2_mmHg is not None]
 
 
 def _until(seen: Observed, rule: DueRule, response: ResponseFigure) -> Instant:
     """The latest time; in a record that began with support running, nothing is late before 30 min of it."""
     until = response.anchor_at + int(rule.until_min * MINUTE)
-    first = seen.episode.first_at
+    first = seen.first_at
     return until if first is None else max(until, first + int(rule.from_min * MINUTE))
 
 
@@ -111,27 +117,31 @@ def _because(seen: Observed, rule: DueRule, i: int, response: ResponseFigure) ->
 
 
 def _running_before(seen: Observed) -> bool:
-    first, start = seen.episode.first_at, seen.support.start
+    first, start = seen.first_at, seen.support.start
     return not seen.support.start_recorded or (start is not None and first is not None and start < first)
 
 
 def _last_acidotic(seen: Observed, at: Instant) -> bool:
-    known = [g for g in seen.gases if g.at <= at and g.ph is not None]
-    return bool(known) and (known[-1].ph or 0.0) < seen.policy.state.acidotic_below_ph.value
+    gas = seen.gas_with_ph_at(at)
+    return gas is not None and gas.ph is not None and gas.ph < seen.policy.state.acidotic_below_ph.value
 
 
 def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
     """Pressure support by 2 or more, any change of mode, oxygen up by 0.04 or 1 L/min at hypercapnic risk."""
-    before, after = seen.settings.before(response.first_at), seen.settings.at(response.anchor_at)
-    if any(s.channel == "mode" for s in response.steps):
+    channels = {s.channel for s in response.steps}
+    if "mode" in channels:
         return True
-    support = abs(after.pressure_support - before.pressure_support)
-    if not isnan(support) and round(support - rule.limits["pressure_support"], 6) >= 0:
-        return True
-    if not (seen.risk_since is not None or seen.ctx.hypercapnic_risk):
+    if channels & {"ipap", "epap", "cpap", "pressure_support"}:
+        before, after = seen.settings.before(response.first_at), seen.settings.at(response.anchor_at)
+        support = abs(after.pressure_support - before.pressure_support)
+        if not isnan(support) and round(support - rule.limits["pressure_support"], 6) >= 0:
+            return True
+    if not channels & {"fio2", "o2_flow"} or not (seen.risk_since is not None or seen.ctx.hypercapnic_risk):
         return False
-    fio2, flow = after.fio2 - before.fio2, after.o2_flow - before.o2_flow
-    return round(fio2 - rule.limits["fio2"], 6) >= 0 or round(flow - rule.limits["o2_flow"], 6) >= 0
+    return any(
+        round(steps.at(response.anchor_at) - steps.before(response.first_at) - rule.limits[name], 6) >= 0
+        for name, steps in (("fio2", seen.settings.fio2), ("o2_flow", seen.settings.o2_flow))
+    )
 
 
 def _worse_after_break(seen: Observed, response: ResponseFigure) -> bool:

@@ -76,7 +76,7 @@ def ceiling_item(seen: Observed) -> Item | None:
     rule, start = _rule(seen, "ceiling"), seen.support.start
     if rule is None or start is None or start > seen.as_of:
         return None
-    begun = max(start, seen.episode.first_at or start)
+    begun = max(start, seen.first_at or start)
     ceiling = seen.episode.text("ceiling_of_care")
     item = _item(rule, "ceiling", Message("due.ceiling", {"started_at": begun}), begun)
     if seen.episode.latest_text("ceiling_of_care") in (None, "not recorded"):
@@ -100,7 +100,7 @@ def break_end_items(seen: Observed) -> Iterator[Item]:
 def _ventilating(seen: Observed, since: Instant) -> bool:
     """The device has measured breaths in the last quarter of an hour."""
     low = max(since, seen.as_of - 15 * MINUTE)
-    near = (seen.series(c).machine.between(low, seen.as_of) for c in ("vte", "mv", "rr_total"))
+    near = (seen.machine(c).between(low, seen.as_of) for c in ("vte", "mv", "rr_total"))
     return any(bool((s.v > 0).any()) for s in near)
 
 

@@ -146,7 +146,8 @@ def _with_strongest(flags: Iterable[FlagFigure]) -> list[FlagFigure]:
     groups: set[str] = set()
     for flag in sorted(flags, key=strength):
         over = flag.state == NO_LONGER
-        out.append(replace(flag, strongest=flag.group not in groups))
+        shown = flag.group not in groups
+        out.append(flag if flag.strongest is shown else replace(flag, strongest=shown))
         if not over:
             groups.add(flag.group)
     return out

@@ -152,8 +152,8 @@ class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     """One marker: whether it is on, how strong, in which group, whom it was validated in, and its numbers.
 
     `outside`: what happens outside the population: silent, or a remark that says so. `gap_min`: met again within
-    so many minutes is the same flag. `stale_min`: what an open flag rests on is stale when older, and says so. `limits` are plain numbers (their names carry the unit), `pressures` gas
-    pressures in both forms.
+    so many minutes is the same flag. `stale_min`: what an open flag rests on is stale when older, and says so.
+    `limits` are plain numbers (their names carry the unit), `pressures` gas pressures in both forms.
     """
 
     on: bool = True

@@ -19,8 +19,13 @@ def ph_points(
     """pH below a limit at each gas that has one."""
     for gas in gases:
         if gas.ph is not None:
-            value = say.value_is("ph", gas.ph, say.BELOW, limit, gas.at, gas.ph_text)
-            yield Point(gas.at, gas.ph < limit, (value, *more(gas), *say.gas_doubts(gas)))
+            met = gas.ph < limit
+            yield Point(gas.at, met, (_low(gas, limit), *more(gas), *say.gas_doubts(gas)) if met else ())
+
+
+def _low(gas: GasFigure, limit: float) -> Message:
+    assert gas.ph is not None
+    return say.value_is("ph", gas.ph, say.BELOW, limit, gas.at, gas.ph_text)
 
 
 def ph_below_severe(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -46,8 +51,8 @@ def ph_below_715_before_support(seen: Observed, rule: MarkerRule) -> Iterable[Sp
         if gas.ph is None:
             continue
         before = not seen.drawn_on_support(gas) and not gas.off_support
-        told = say.value_is("ph", gas.ph, say.BELOW, rule.limits["ph"], gas.at, gas.ph_text)
-        points.append(Point(gas.at, before and gas.ph < rule.limits["ph"], (told, *say.gas_doubts(gas))))
+        met = before and gas.ph < rule.limits["ph"]
+        points.append(Point(gas.at, met, (_low(gas, rule.limits["ph"]), *say.gas_doubts(gas)) if met else ()))
     return from_points(points)
 
 
@@ -83,9 +88,9 @@ def acidosis_off_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     points = []
     for gas in seen.gases:
         if gas.ph is not None:
-            told = say.value_is("ph", gas.ph, say.BELOW, rule.limits["ph"], gas.at, gas.ph_text)
             met = gas.off_support and gas.ph < rule.limits["ph"]
-            points.append(Point(gas.at, met, (told, *_off(gas), *say.gas_doubts(gas))))
+            told = (_low(gas, rule.limits["ph"]), *_off(gas), *say.gas_doubts(gas)) if met else ()
+            points.append(Point(gas.at, met, told))
     return from_points(points)
 
 
@@ -95,8 +100,7 @@ def venous_ph_below_severe(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     for gas in seen.ctx.gases:
         if gas.ph is None:
             continue
-        venous = gas.site == "venous"
-        told = say.value_is("ph", gas.ph, say.BELOW, rule.limits["ph"], gas.at, gas.ph_text)
+        met = gas.site == "venous" and gas.ph < rule.limits["ph"]
         extra = Message("evidence.venous", {"at": gas.at})
-        points.append(Point(gas.at, venous and gas.ph < rule.limits["ph"], (told, extra, *say.gas_doubts(gas))))
+        points.append(Point(gas.at, met, (_low(gas, rule.limits["ph"]), extra, *say.gas_doubts(gas)) if met else ()))
     return from_points(points)

@@ -42,7 +42,7 @@ def _rr_above(seen: Observed, rule: MarkerRule) -> list[Spell]:
     if start is None:
         return []
     first = start + int(rule.limits["after_min"] * MINUTE)
-    counted = seen.series("rr").spots
+    counted = seen.spots("rr")
     found = [*_by_machine(seen, rule, counted), *_by_count(rule, counted, first)]
     return united(clipped(found, first, None))
 
@@ -67,10 +67,10 @@ def _by_machine(seen: Observed, rule: MarkerRule, counted: Series) -> list[Spell
     limit, n, m = rule.limits["rr"], int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
     found = []
     for channel in ("rr_total", "rr"):
-        rates = seen.series(channel).machine
-        if not (rates.v > limit).any():
+        if not (seen.machine(channel).v > limit).any() or seen.support.start is None:
             continue
-        worn = rates.cut(seen.worn(rates.t, rule.limits["after_min"]))
+        worn = seen.worn_machine(channel)
+        worn = worn.between(seen.support.start + int(rule.limits["after_min"] * MINUTE), seen.as_of)
         v = np.where(_counted_lower(seen, worn, counted, limit), 0.0, worn.v)
         for s in crossings(worn.t, v, limit, n, m):
             i, j = _span(worn, s)
@@ -100,15 +100,15 @@ def backup_takeover(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
     Never in a timed mode, nor where it is the aim (neuromuscular disease, obesity hypoventilation).
     """
-    rates = seen.series("rr_total").machine
-    rates = rates.cut(seen.worn(rates.t) & _in_st(seen, rates))
-    if not len(rates):
+    rates = seen.worn_machine("rr_total")
+    if not len(rates) or not inside(seen, rule.population, seen.as_of):
         return []
+    rates = rates.cut(_in_st(seen, rates))
     taking = _taking_over(seen, rule, rates)
     found = []
     n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
     for s in crossings(rates.t, taking.astype(np.float64), 0.5, n, m):
-        if not _is_new(rule, rates, taking, s) or not inside(seen, rule.population, s.start):
+        if not _is_new(rule, rates, taking, s):
             continue
         worse = _worse_since(seen, rule, s)
         if worse is None:
@@ -133,7 +133,7 @@ def _taking_over(seen: Observed, rule: MarkerRule, rates: Series) -> Flags:
     """Few breaths triggered where the device tells; else a total rate that is the set rate."""
     set_rate: Values = seen.settings.steps("rate_set").on(rates.t)
     at_set = rates.v <= set_rate + rule.limits["rate_tolerance"]
-    triggered = seen.series("spont_percent").machine
+    triggered = seen.machine("spont_percent")
     if not len(triggered):
         return np.asarray(at_set)
     i = np.searchsorted(triggered.t, rates.t, side="right") - 1

@@ -13,6 +13,7 @@ from core.judgement.markers.spells import Point, Spell, from_points, from_runs, 
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.shapes import GasFigure
 from core.judgement.sustained import spells as crossings
+from core.record.episode import Series
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 
@@ -106,28 +107,37 @@ def raised_pressures(seen: Observed) -> list[Instant]:
 
 def spo2_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """A sudden fall of SpO2, to below its range, within the hour after a pressure was raised."""
-    spo2 = seen.series("spo2").machine
-    found = []
-    for at in seen.once(raised_pressures):
-        before = spo2.between(at - 15 * MINUTE, at)
-        after = spo2.between(at, seen.as_of)
-        if not len(before) or not len(after):
+    spo2 = seen.machine("spo2")
+    below = spo2.v < seen.targets(spo2.t)[0]
+    found: list[Spell] = []
+    raised = np.array(seen.once(raised_pressures), np.int64)
+    firsts = np.searchsorted(spo2.t, raised)
+    lasts = np.searchsorted(spo2.t, raised + int(rule.limits["within_min"] * MINUTE), side="right")
+    starts = np.searchsorted(spo2.t, raised - 15 * MINUTE)
+    for at, k, i, j in zip(raised.tolist(), starts.tolist(), firsts.tolist(), lasts.tolist(), strict=True):
+        before = spo2.v[k:i]
+        if not before.size or not below[i:j].any():
             continue
-        median = float(np.median(before.v))
-        low, _ = seen.targets(after.t)
-        limit = np.minimum(median - rule.limits["points"] + 1e-9, low)
-        if not (after.v < limit).any():
-            continue
-        after_worn = after.cut(~seen.off_mask(after.t))
-        lim = limit[~seen.off_mask(after.t)]
-        n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
-        for s in crossings(after_worn.t, after_worn.v, lim, n, m, below=True):
-            if s.start <= at + int(rule.limits["within_min"] * MINUTE):
-                i, j = np.searchsorted(after.t, [s.start, s.end if s.end is not None else after.t[-1] + 1])
-                lowest = i + int(np.argmin(after.v[i:j]))
-                told = say.changed("spo2", median, at, float(after.v[lowest]), int(after.t[lowest]))
-                found.append(Spell(s.start, s.end, (told, *_after_raise(at, s.start))))
+        enough = spo2.v[i:j].min() + rule.limits["points"]
+        if enough <= before.max() and enough <= (median := float(np.median(before))):
+            found += _falls(seen, rule, spo2.cut(slice(i, None)), median, at)
     return united(found)
+
+
+def _falls(seen: Observed, rule: MarkerRule, after: Series, median: float, at: Instant) -> list[Spell]:
+    """Falls below both the range and the level before the pressure was raised, that begin within the hour."""
+    after = after.cut(~seen.off_mask(after.t))
+    limit = np.minimum(median - rule.limits["points"] + 1e-9, seen.targets(after.t)[0])
+    n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
+    found = []
+    for s in crossings(after.t, after.v, limit, n, m, below=True):
+        if s.start > at + int(rule.limits["within_min"] * MINUTE):
+            break
+        i, j = np.searchsorted(after.t, [s.start, s.end if s.end is not None else after.t[-1] + 1])
+        lowest = int(i) + int(np.argmin(after.v[i:j]))
+        told = say.changed("spo2", median, at, float(after.v[lowest]), int(after.t[lowest]))
+        found.append(Spell(s.start, s.end, (told, *_after_raise(at, s.start))))
+    return found
 
 
 def sbp_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -139,6 +149,9 @@ def sbp_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]
         if i < 0 or at - int(sbp.t[i]) > rule.limits["before_h"] * HOUR:
             continue
         then = float(sbp.v[i])
+        j = int(np.searchsorted(sbp.t, at + int(rule.limits["within_min"] * MINUTE), side="right"))
+        if i + 1 >= j or then - sbp.v[i + 1 : j].min() < rule.limits["sbp_fall"]:
+            continue
         points = []
         for t, v in zip(sbp.t[i + 1 :].tolist(), sbp.v[i + 1 :].tolist(), strict=True):
             fell = then - v >= rule.limits["sbp_fall"]

@@ -75,12 +75,15 @@ def rate_falling_worse_gas(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             points.append(Point(gas.at, None))
             continue
         worse = _worse(seen, before, gas)
+        if not worse:
+            points.append(Point(gas.at, False))
+            continue
         rr = _rate_change(seen, before, gas)
         if rr is None:
-            points.append(Point(gas.at, None if worse else False))
+            points.append(Point(gas.at, None))
             continue
         told, slower = rr
-        points.append(Point(gas.at, bool(worse) and slower, (told, *worse, *say.gas_doubts(gas))))
+        points.append(Point(gas.at, slower, (told, *worse, *say.gas_doubts(gas))))
     return from_points(points)
 
 

@@ -19,6 +19,8 @@ LEVELS = ("alert", "confusion", "voice", "pain", "unresponsive")
 
 def _gcs_below(seen: Observed, limit: float) -> list[Spell]:
     series = seen.series("gcs")
+    if not (series.v < limit).any():
+        return []
     return from_points(
         Point(int(t), bool(v < limit), (say.value_is("gcs", float(v), say.BELOW, limit, int(t)),))
         for t, v in zip(series.t, series.v, strict=True)
@@ -39,6 +41,8 @@ def gcs_fall(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """GCS at least 2 below the best of the last 24 h; ends once it is nearer to that again."""
     series = seen.series("gcs")
     span = int(rule.limits["within_h"] * HOUR)
+    if not len(series) or series.v.max() - series.v.min() < rule.limits["points"]:
+        return []
     points = []
     for i, (t, v) in enumerate(zip(series.t.tolist(), series.v.tolist(), strict=True)):
         j = int(np.searchsorted(series.t, t - span))
@@ -67,8 +71,10 @@ def new_confusion(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
 
 def rate_falling_worse_gcs(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """Rate down beyond noise while GCS fell, between two sets of observations."""
-    gcs, rates = seen.series("gcs"), seen.series("rr").spots
+    gcs, rates = seen.series("gcs"), seen.spots("rr")
     noise = seen.policy.noise.rr_counted.value
+    if not (np.diff(gcs.v) < 0).any():
+        return []
     points = []
     for i in range(1, len(gcs)):
         before, at = int(gcs.t[i - 1]), int(gcs.t[i])
@@ -99,7 +105,9 @@ def _at(
 
 def rate_below_12_drowsy(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """Rate below 12 with drowsiness at the same time: voice, pain or no response, or a low GCS."""
-    rates, gcs, levels = seen.series("rr").spots, seen.series("gcs"), seen.episode.text("acvpu")
+    rates, gcs, levels = seen.spots("rr"), seen.series("gcs"), seen.episode.text("acvpu")
+    if not (rates.v < rule.limits["rr"]).any():
+        return []
     moments = sorted({*rates.t.tolist(), *gcs.t.tolist(), *levels.t.tolist()})
     points = []
     for at in moments:

@@ -30,8 +30,7 @@ def _leak(seen: Observed, extra: float) -> list[Spell]:
     definition = leak_definition(seen.ctx)
     if definition is None:
         return []
-    leak = seen.series("leak").machine
-    leak = leak.cut(seen.worn(leak.t))
+    leak = seen.worn_machine("leak")
     limit: Values = limits_at(seen.ctx, leak.t, definition)[0] + extra
     rules = seen.policy.leak
     n, m = int(rules.over_minutes.value), int(rules.of_minutes.value)

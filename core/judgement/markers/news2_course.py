@@ -35,7 +35,7 @@ class Course:
 
 def news2_course(seen: Observed) -> Course:
     """NEWS2 at every set of observations that people took."""
-    spots = {c: seen.series(c).spots for c in OBSERVED}
+    spots = {c: seen.spots(c) for c in OBSERVED}
     moments, counts = np.unique(np.concatenate([s.t for s in spots.values()]), return_counts=True)
     t = moments[counts >= 3]
     low, high = np.zeros(t.shape), np.zeros(t.shape)
@@ -103,11 +103,13 @@ def news2_rise(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         j = int(np.searchsorted(course.t, course.t[k] - span))
         if j == k:
             continue
+        if course.low[k] - course.high[j:k].min() < rise:
+            points.append(Point(int(course.t[k]), False))
+            continue
         own = j + int(np.argmin(course.high[j:k]))
-        met = bool(course.low[k] - course.high[own] >= rise)
         told: dict[str, Value] = {
             "score": "news2", "before": float(course.high[own]), "before_at": int(course.t[own]),
             "lowest": float(course.low[k]), "highest": float(course.high[k]), "at": int(course.t[k]),
         }  # fmt: skip
-        points.append(Point(int(course.t[k]), met, (Message("evidence.score_rise", told),)))
+        points.append(Point(int(course.t[k]), True, (Message("evidence.score_rise", told),)))
     return from_points(points)

@@ -8,6 +8,8 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from functools import partial
+from math import isnan
 
 from core.judgement.markers import evidence as say
 from core.judgement.markers.observed import Observed
@@ -16,6 +18,7 @@ from core.judgement.markers.spells import Point, Spell, from_points
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.response_noise import direction, paco2_noise, ph_noise, rr_noise
 from core.judgement.shapes import GasFigure
+from core.record.channels import BILEVEL_MODES
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message, Value
 
@@ -44,7 +47,7 @@ def comparisons(seen: Observed, gas: GasFigure) -> list[Comparison]:
     """What a gas is compared with: the baseline of its own anchor, and that of the start. Both need a pH."""
     if gas.ph is None or not seen.drawn_on_support(gas):
         return []
-    by_at = {g.at: g for g in seen.gases}
+    by_at = seen.by_moment
     out: list[Comparison] = []
     for a in seen.attributed.get(gas.at, ()):
         base = by_at.get(a.response.baseline_at) if a.response.baseline_at is not None else None
@@ -64,15 +67,25 @@ def not_gained(seen: Observed, c: Comparison) -> bool:
     return direction(c.gain, ph_noise(seen.policy.noise)) < 1
 
 
-def _judged(seen: Observed) -> list[tuple[GasFigure, Comparison | None, bool]]:
-    """Each gas on support with a pH: the comparison by which it is not better now, and whether it says it is over.
+@dataclass(frozen=True, slots=True)
+class Judgement:
+    """A gas on support with a pH: the comparison by which it is not better, of which kind, or that it is over."""
+
+    gas: GasFigure
+    poor: Comparison | None
+    kind: str
+    over: bool
+
+
+def _judged(seen: Observed) -> list[Judgement]:
+    """What each gas on support with a pH says.
 
     A gas outside the hours that judge does not begin anything; it ends what began when pH reached 7.35 or has risen
     beyond noise since the baseline of that beginning.
     """
     rules = seen.policy.response
     low, high = rules.one_to_two_hours_from_min.value, rules.one_to_two_hours_to_min.value
-    out: list[tuple[GasFigure, Comparison | None, bool]] = []
+    out: list[Judgement] = []
     standing: Comparison | None = None
     for gas in seen.on_support_gases:
         if gas.ph is None:
@@ -85,7 +98,7 @@ def _judged(seen: Observed) -> list[tuple[GasFigure, Comparison | None, bool]]:
             over = over or direction(gas.ph - standing.base.ph, ph_noise(seen.policy.noise)) == 1
             over = over or any(not not_gained(seen, c) for c in timely)
         standing = poor if poor is not None else None if over else standing
-        out.append((gas, poor, over))
+        out.append(Judgement(gas, poor, _kind(seen, poor) if poor is not None else "", over))
     return out
 
 
@@ -146,12 +159,11 @@ def _told(seen: Observed, c: Comparison) -> tuple[Message, ...]:
 
 def _of_kind(seen: Observed, kind: str) -> Iterable[Spell]:
     points = []
-    for gas, poor, over in seen.once(_judged):
-        if poor is not None:
-            met = _kind(seen, poor) == kind
-            points.append(Point(gas.at, met, _told(seen, poor) if met else ()))
+    for j in seen.once(_judged):
+        if j.poor is not None:
+            points.append(Point(j.gas.at, j.kind == kind, partial(_told, seen, j.poor)))
         else:
-            points.append(Point(gas.at, False if over else None))
+            points.append(Point(j.gas.at, False if j.over else None))
     return from_points(points)
 
 
@@ -174,15 +186,16 @@ def hdu_criterion(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """pH below 7.30 and not better at 1-2 h: a higher level of care was advised."""
     limit = rule.limits["ph"]
     points = []
-    for gas, poor, over in seen.once(_judged):
+    for j in seen.once(_judged):
+        gas = j.gas
         assert gas.ph is not None
         if gas.ph >= limit:
             points.append(Point(gas.at, False))
-        elif poor is not None:
-            told = (say.value_is("ph", gas.ph, say.BELOW, limit, gas.at, gas.ph_text), *_told(seen, poor)[1:3])
-            points.append(Point(gas.at, True, told))
+        elif j.poor is not None:
+            value = say.value_is("ph", gas.ph, say.BELOW, limit, gas.at, gas.ph_text)
+            points.append(Point(gas.at, True, (value, *_told(seen, j.poor)[1:3], *say.gas_doubts(gas))))
         else:
-            points.append(Point(gas.at, False if over else None))
+            points.append(Point(gas.at, False if j.over else None))
     return from_points(points)
 
 
@@ -193,16 +206,19 @@ def no_gain_after_hours(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         return []
     points = []
     for gas in seen.on_support_gases:
-        hours = seen.support.hours_on_mask(start, gas.at)
-        if gas.ph is None or gas.paco2_mmHg is None or hours < rule.limits["hours"]:
+        if gas.ph is None or gas.paco2_mmHg is None or base.paco2_mmHg is None:
             continue
-        lower = base.paco2_mmHg is not None and _paco2_lower(seen, base, gas)
         still = gas.ph < seen.policy.state.acidotic_below_ph.value
-        met = still and not lower and direction(gas.ph - base.ph, ph_noise(seen.policy.noise)) < 1
-        met = met and base.paco2_mmHg is not None and not support_is_small(seen, gas.at)
+        no_gain = still and direction(gas.ph - base.ph, ph_noise(seen.policy.noise)) < 1
+        if not no_gain or _paco2_lower(seen, base, gas):
+            points.append(Point(gas.at, False))
+            continue
+        hours = seen.support.hours_on_mask(start, gas.at)
+        if hours < rule.limits["hours"]:
+            continue
+        met = not support_is_small(seen, gas.at)
         told = [say.changed("ph", base.ph, base.at, gas.ph, gas.at, ph_noise(seen.policy.noise))]
-        if base.paco2_mmHg is not None:
-            told.append(say.changed("paco2", base.paco2_mmHg, base.at, gas.paco2_mmHg, gas.at))
+        told.append(say.changed("paco2", base.paco2_mmHg, base.at, gas.paco2_mmHg, gas.at))
         hours_told: dict[str, Value] = {"what": "on support", "hours": round(hours, 2), "limit": rule.limits["hours"]}
         points.append(Point(gas.at, met, (*told, Message("evidence.hours", hours_told), *say.gas_doubts(gas))))
     return from_points(points)
@@ -220,8 +236,11 @@ def support_is_small(seen: Observed, at: Instant) -> bool:
     rule = seen.policy.markers.get("too_little_support")
     if rule is None or not inside(seen, "hypercapnic copd", at):
         return False
-    now = seen.settings.at(at)
-    small = now.is_cpap or (now.is_bilevel and now.ipap < rule.limits["ipap"])
+    mode, ipap = seen.episode.text("mode").at(at), seen.settings.steps("ipap").at(at)
+    if mode in BILEVEL_MODES or (mode is None and not isnan(ipap)):
+        small = ipap < rule.limits["ipap"]
+    else:
+        small = mode == "CPAP" or (mode is None and not isnan(seen.settings.steps("cpap").at(at)))
     return small and seen.episode.text("support_reason").at(at) is None
 
 
@@ -240,7 +259,7 @@ def too_little_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             continue
         poor = gas.ph < seen.policy.state.acidotic_below_ph.value and not gas.off_support
         met = poor and inside(seen, rule.population, gas.at) and support_is_small(seen, at)
-        points.append(Point(at, met, _small(seen, rule, at, gas) if met else ()))
+        points.append(Point(at, met, partial(_small, seen, rule, at, gas)))
     return from_points(points)
 
 

@@ -41,6 +41,7 @@ class Observed:
 
     ctx: Context
     _found: dict[Callable[[Any], Any], Any] = field(default_factory=dict)
+    _series: dict[tuple[str, str], Series] = field(default_factory=dict)
 
     def once(self, find: Callable[[Observed], Finding]) -> Finding:
         """What `find` gives for this record, computed the first time only: several markers share it."""
@@ -75,6 +76,11 @@ class Observed:
         return self.ctx.as_of
 
     @cached_property
+    def first_at(self) -> Instant | None:
+        """The first moment that anything was logged for."""
+        return self.episode.first_at
+
+    @cached_property
     def gases(self) -> tuple[GasFigure, ...]:
         """Arterial and capillary gases, by time: those whose pH and PCO2 judge."""
         return tuple(g for g in self.ctx.gases if g.site in STANDS_FOR_ARTERIAL)
@@ -93,6 +99,11 @@ class Observed:
         return after or (not self.support.start_recorded and gas.at >= start)
 
     @cached_property
+    def by_moment(self) -> dict[Instant, GasFigure]:
+        """The arterial and capillary gases by their moment."""
+        return {g.at: g for g in self.gases}
+
+    @cached_property
     def _gas_moments(self) -> list[Instant]:
         return [g.at for g in self.gases]
 
@@ -100,6 +111,11 @@ class Observed:
         """The newest arterial or capillary gas at or before a moment."""
         i = bisect_right(self._gas_moments, at)
         return self.gases[i - 1] if i else None
+
+    def gas_with_ph_at(self, at: Instant) -> GasFigure | None:
+        """The newest of them that has a pH."""
+        i = bisect_right(self._gas_moments, at)
+        return next((g for g in reversed(self.gases[:i]) if g.ph is not None), None)
 
     def gases_before(self, gas: GasFigure, within: Instant) -> tuple[GasFigure, ...]:
         """The arterial or capillary gases before one, at most `within` microseconds older."""
@@ -140,9 +156,38 @@ class Observed:
 
     def series(self, channel: str) -> Series:
         """The known values of a channel."""
-        found = self.episode.number(channel)
-        known = np.isfinite(found.v)
-        return found if known.all() else found.cut(known)
+        return self._part(channel, "all")
+
+    def spots(self, channel: str) -> Series:
+        """The known values of a channel that people logged."""
+        return self._part(channel, "spots")
+
+    def machine(self, channel: str) -> Series:
+        """The known values of a channel that a machine wrote."""
+        return self._part(channel, "machine")
+
+    def worn_machine(self, channel: str) -> Series:
+        """Those that it wrote while support ran on the patient."""
+        return self._part(channel, "worn")
+
+    def _part(self, channel: str, part: str) -> Series:
+        """A part of a channel, cut once: a cut costs more than most markers."""
+        key = (channel, part)
+        if key not in self._series:
+            self._series[key] = self._cut(channel, part)
+        return self._series[key]
+
+    def _cut(self, channel: str, part: str) -> Series:
+        if part == "all":
+            found = self.episode.number(channel)
+            known = np.isfinite(found.v)
+            return found if known.all() else found.cut(known)
+        if part == "worn":
+            machine = self.machine(channel)
+            return machine.cut(self.worn(machine.t)) if len(machine) else machine
+        found = self.series(channel)
+        wanted = found.spot if part == "spots" else ~found.spot
+        return found if wanted.all() else found.cut(wanted)
 
     @cached_property
     def suspected_breaks(self) -> tuple[Break, ...]:

@@ -28,6 +28,9 @@ def _pao2_points(seen: Observed, rule: MarkerRule, highest: bool | None) -> Iter
         if gas.pao2_mmHg is None:
             continue
         low = say.is_below(gas.pao2_mmHg, limit)
+        if not low:
+            yield Point(gas.at, False)
+            continue
         told = [say.pressure_is("pao2", gas.pao2_mmHg, say.BELOW, limit, gas.at)]
         told.append(
             say.unknown("fio2") if gas.fio2 is None else say.value_is("fio2", gas.fio2, say.AT_LEAST, 0.21, gas.at)
@@ -70,11 +73,11 @@ def pf_low_at_1h(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         if gas.pf_mmHg is None or not seen.drawn_on_support(gas):
             continue
         minutes = gas.at // MINUTE - start.anchor_at // MINUTE
-        told = (say.value_is("pf", gas.pf_mmHg, say.AT_MOST, limit, gas.at),
-                say.timing("start", start.anchor_at, minutes), *say.gas_doubts(gas))  # fmt: skip
         if low <= minutes <= high and (nearest is None or abs(minutes - 60) < abs(nearest - 60)):
             nearest = minutes
             met = gas.pf_mmHg <= limit and inside(seen, rule.population, gas.at)
+            told = (say.value_is("pf", gas.pf_mmHg, say.AT_MOST, limit, gas.at),
+                    say.timing("start", start.anchor_at, minutes), *say.gas_doubts(gas))  # fmt: skip
             points.append(Point(gas.at, met, told))
         elif nearest is not None:
             points.append(Point(gas.at, None if gas.pf_mmHg <= limit else False))
@@ -136,6 +139,9 @@ def fio2_need_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """FiO2 up by 0.10 or more within 4 h, to hold the same SpO2."""
     steps = seen.settings.fio2
     span, rise = int(rule.limits["within_h"] * HOUR), rule.limits["rise"]
+    known = steps.v[~np.isnan(steps.v)]
+    if not known.size or round(float(known.max() - known.min()) - rise, 6) < 0:
+        return []
     settle = int(seen.policy.oxygen.steady_fio2_min.value * MINUTE)
     moments = sorted({*(int(t) + settle for t in steps.t), *(int(t) + span + 1 for t in steps.t)})
     points = []

@@ -20,19 +20,23 @@ from core.record.instant import MINUTE
 from core.record.samples import Flags, Values
 
 
+def ranged(seen: Observed) -> tuple[Series, Values, Values]:
+    """SpO2 with the lower and the upper end of the range in force at each value."""
+    spo2 = seen.series("spo2")
+    return spo2, *seen.targets(spo2.t)
+
+
 def spo2_deep(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """SpO2 5 points or more below range for 2 min (two readings in a row where people took them)."""
     margin = rule.limits["points"]
-    spo2 = seen.series("spo2")
-    low, _ = seen.targets(spo2.t)
+    spo2, low, _ = seen.once(ranged)
     # at least `points` below counts: the crossing is strict, so the limit lies a hair above
     return _out(rule, spo2, low - margin + 1e-9, spo2.v <= low - margin, below=True)
 
 
 def spo2_below_range(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """SpO2 below range for 15 min, or twice in a row."""
-    spo2 = seen.series("spo2")
-    low, _ = seen.targets(spo2.t)
+    spo2, low, _ = seen.once(ranged)
     return _out(rule, spo2, low, spo2.v < low, below=True)
 
 
@@ -47,8 +51,9 @@ def over_oxygenation(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 
 def _above(seen: Observed, rule: MarkerRule, *, at_risk: bool) -> Iterable[Spell]:
-    spo2 = seen.series("spo2")
-    _, high = seen.targets(spo2.t)
+    spo2, _, high = seen.once(ranged)
+    if not (spo2.v > high).any():
+        return []
     counts = seen.oxygen_given(spo2.t) & (seen.at_risk(spo2.t) == at_risk)
     limit = np.where(counts, high, np.inf)
     return _out(rule, spo2, limit, spo2.v > limit, below=False)
@@ -74,7 +79,8 @@ def _by_machine(rule: MarkerRule, spo2: Series, limit: Values, relation: str) ->
         v, lim = spo2.v[i:j], limit[i:j]
         past = v[v < lim] if relation == say.BELOW else v[v > lim]
         median = float(np.median(past)) if past.size else float(np.median(v))
-        told = say.sustained("spo2", relation, round(float(lim[-1]), 3), s.minutes, s.start, int(spo2.t[j - 1]), median)
+        edge, newest = round(float(lim[-1]), 3), int(spo2.t[j - 1])
+        told = say.sustained("spo2", relation, edge, s.minutes, s.start, newest, median)
         spells.append(Spell(s.start, s.end, (told,)))
     return spells
 
@@ -100,10 +106,9 @@ def _by_people(spo2: Series, limit: Values, out: Flags, relation: str) -> list[S
         if not bad[k]:
             points.append(Point(int(t[k]), False))
         elif k and bad[k - 1]:
-            told = [
-                say.value_is("spo2", float(v[i]), relation, round(float(lim[i]), 3), int(t[i])) for i in (k - 1, k)
-            ]
-            points.append(Point(int(t[k]), True, tuple(told)))
+            two = ((float(v[i]), round(float(lim[i]), 3), int(t[i])) for i in (k - 1, k))
+            told = tuple(say.value_is("spo2", value, relation, edge, at) for value, edge, at in two)
+            points.append(Point(int(t[k]), True, told))
     return from_points(points)
 
 

@@ -12,6 +12,8 @@ from core.record.message import Message
 from core.record.samples import Flags, Times
 
 Evidence = tuple[Message, ...]
+Told = Evidence | Callable[[], Evidence]
+"""Evidence, or what makes it: only the newest of a spell is ever made."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,7 +32,7 @@ class Point:
 
     at: Instant
     met: bool | None
-    evidence: Evidence = ()
+    evidence: Told = ()
     outside_population: bool = False
 
 
@@ -51,11 +53,16 @@ def from_points(points: Iterable[Point]) -> list[Spell]:
             since = point.at if since is None else since
             last = point
         elif point.met is False and since is not None and last is not None:
-            spells.append(Spell(since, point.at, last.evidence, last.outside_population))
+            spells.append(_spell(since, point.at, last))
             since = None
     if since is not None and last is not None:
-        spells.append(Spell(since, None, last.evidence, last.outside_population))
+        spells.append(_spell(since, None, last))
     return spells
+
+
+def _spell(since: Instant, until: Instant | None, last: Point) -> Spell:
+    evidence = last.evidence() if callable(last.evidence) else last.evidence
+    return Spell(since, until, evidence, last.outside_population)
 
 
 def from_runs(t: Times, met: Flags, evidence: Callable[[int, int], Evidence]) -> list[Spell]:

@@ -35,9 +35,8 @@ class Volumes:
 
 def volumes(seen: Observed) -> Volumes:
     """Every tidal volume while support ran, with its trust at the leak of that minute."""
-    vte = seen.series("vte").machine
-    vte = vte.cut(seen.worn(vte.t))
-    leak = seen.series("leak").machine
+    vte = seen.worn_machine("vte")
+    leak = seen.machine("leak")
     definition = leak_definition(seen.ctx) or "not known"
     at = _leak_at(leak, vte)
     port: Values = np.full(vte.t.shape, np.nan)
@@ -58,6 +57,8 @@ def _leak_at(leak: Series, vte: Series) -> Values:
 
 def vt_not_trusted(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
     """A tidal volume that leak makes doubtful for 10 of 12 minutes."""
+    if leak_definition(seen.ctx) is None:
+        return []
     found = seen.once(volumes)
     doubtful = (found.codes == Trust.DOUBTFUL) | (found.codes == Trust.VOID)
     if not doubtful.any():
@@ -80,6 +81,9 @@ def vt_high_hypoxaemic(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     height, sex = seen.episode.latest("height"), seen.episode.latest_text("sex")
     weight = float(predicted_body_weight(np.nan if height is None else height, base_weight(sex)))
     if isnan(weight):
+        return []
+    poor = (g for g in seen.gases if g.pf_mmHg is not None and g.pf_mmHg <= rule.limits["pf"])
+    if not any(inside(seen, rule.population, g.at) for g in poor):
         return []
     found = seen.once(volumes)
     usable = (found.codes == Trust.TRUSTED) | (found.codes == Trust.NOT_KNOWN)

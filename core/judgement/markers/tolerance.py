@@ -69,27 +69,25 @@ def weaning_ready(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     for gas in seen.gases:
         if gas.ph is None or not (seen.drawn_on_support(gas) or gas.off_support):
             continue
-        ready, told = _ready(seen, rule, gas)
-        enough = seen.support.hours_on_mask(start, gas.at) >= rule.limits["hours"]
         twice = before is not None and before.state == "resolved" and gas.state == "resolved"
-        points.append(Point(gas.at, ready and enough and twice, told))
+        long_enough = gas.at - start >= rule.limits["hours"] * HOUR
+        if twice and long_enough and seen.support.hours_on_mask(start, gas.at) >= rule.limits["hours"]:
+            points.append(Point(gas.at, *_ready(seen, rule, gas)))
+        else:
+            points.append(Point(gas.at, False))
         before = gas
     return from_points(points)
 
 
 def _ready(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tuple[bool, tuple[Message, ...]]:
-    assert gas.ph is not None
+    ph = seen.policy.state.acidotic_below_ph.value
+    if gas.ph is None or gas.ph < ph or gas.fio2 is None or gas.fio2 > rule.limits["fio2"]:
+        return False, ()
     rate, spo2 = seen.rate_near(gas.at), seen.vitals.spo2(gas.at, 0, min(gas.at + HOUR // 2, seen.as_of))
-    if rate is None or spo2 is None or gas.fio2 is None:
+    if rate is None or spo2 is None:
         return False, ()
     low, _ = seen.targets(np.array([gas.at], np.int64))
-    ph = seen.policy.state.acidotic_below_ph.value
-    met = (
-        gas.ph >= ph
-        and rate.value < rule.limits["rr"]
-        and spo2.value >= float(low[0])
-        and gas.fio2 <= rule.limits["fio2"]
-    )
+    met = rate.value < rule.limits["rr"] and spo2.value >= float(low[0])
     return met, (
         say.value_is("ph", gas.ph, say.AT_LEAST, ph, gas.at, gas.ph_text),
         say.value_is("rr", rate.value, say.BELOW, rule.limits["rr"], rate.at),
