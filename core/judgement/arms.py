@@ -53,19 +53,19 @@ def hypoxaemia(gas: GasFigure, policy: Policy) -> bool:
     return gas.pf_mmHg is not None and gas.pf_mmHg <= policy.state.hypoxaemia_pf_mmHg.value
 
 
-def co2_arm(base: GasFigure, gas: GasFigure, policy: Policy) -> Arm:
-    """The CO2 arm: pH up is +, PaCO2 down is +, each beyond noise; over-correction from a hypercapnic baseline."""
+def co2_arm(base: GasFigure, gas: GasFigure, policy: Policy, quiet: bool = False) -> Arm:
+    """The CO2 arm: pH up is +, PaCO2 down is +, each beyond noise; over-correction from a hypercapnic baseline.
+
+    `quiet` leaves the reasons out, where only the verdict is wanted.
+    """
     ph_sign, co2_sign = _ph_sign(base, gas, policy), _paco2_sign(base, gas, policy)
     verdict = _co2_verdict(base, gas, policy, ph_sign, co2_sign)
+    if quiet and verdict is not None:
+        return Arm(verdict, (), co2_sign or 0)
     said = [_ph_said(base, gas, policy, ph_sign), _paco2_said(base, gas, policy, co2_sign)]
     if verdict == OVER_CORRECTION:
         said.insert(0, why.over_correction(gas, base))
     return Arm(verdict, tuple(said), co2_sign or 0)
-
-
-def co2_verdict(base: GasFigure, gas: GasFigure, policy: Policy) -> str | None:
-    """The CO2 arm's verdict without its reasons."""
-    return _co2_verdict(base, gas, policy, _ph_sign(base, gas, policy), _paco2_sign(base, gas, policy))
 
 
 def _co2_verdict(

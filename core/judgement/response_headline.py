@@ -30,7 +30,8 @@ def headline(
 
     The newest gas in the window or after it counts, so that a late relapse is never hidden behind an early gain.
     """
-    by_at = {g.at: g for g in ctx.gases}
+    moments = {j.at for j in judged}
+    by_at = {g.at: g for g in ctx.gases if g.at in moments} if moments else {}
     steady = [j for j in judged if _counts(by_at[j.at], j)]
     decided = [j for j in steady if j.verdict is not None]
     if decided:

@@ -60,7 +60,7 @@ def since_start(
         return SinceStart(gain_lost=lost is not None, reasons=reasons)
     if start.reference:
         reasons["baseline"] = Message("response.reference", {"gas_at": base.at})
-    co2 = arms.co2_arm(base, gas, policy)
+    co2 = arms.co2_arm(base, gas, policy, quiet=True)
     oxygen = arms.oxygen_arm(base, gas, seen, policy, co2)
     found = arms.verdict(co2, oxygen, arms.acute_hypercapnia(base, policy))
     said = (*co2.why, *oxygen.why)
@@ -90,7 +90,7 @@ def gain_lost(
     best = earlier.best(base)
     if best is not None and gas.ph is not None:
         gained = base is None or base.ph is None or (best.ph or 0.0) > base.ph
-        if gained and arms.co2_verdict(best, gas, policy) == arms.WORSE:
+        if gained and arms.co2_arm(best, gas, policy, quiet=True).verdict == arms.WORSE:
             return _lost("ph", best.at, best.ph, gas.ph)
     return _pf_lost(base, gas, [g for g in earlier.with_pf if g is not base], policy)
 
