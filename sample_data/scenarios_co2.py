@@ -157,14 +157,14 @@ def weaning(seed: int, last: int) -> Case:
     )  # fmt: skip
     s = opened(last, NURSE, before={"fio2": 0.26}, start=bilevel(18, 5, 0.26), fit_leak=d.between(7, 12))
     s.hidden(0, severity_end=0.7)
-    breaks = ((45, 45, "supper"), (165, 65, "washed, sat out"), (345, 95, "asleep on 2 L/min"))
+    breaks = ((150, 45, "supper"), (255, 65, "washed, sat out"), (390, 95, "asleep on 2 L/min"))
     for begin, length, text in breaks:
         s.event(begin, "break_start", NURSE, text)
         s.settings(begin, NURSE, o2_flow=2)
         s.event(begin + length, "break_end", NURSE)
         s.settings(begin + length, NURSE, fio2=0.26)
-    s.gas(d.minute(120, 5), NURSE)
-    s.gas(d.minute(428, 3), NURSE, "capillary")
+    s.gas(d.minute(68, 4), NURSE)
+    s.gas(d.minute(472, 3), NURSE, "capillary")
     s.event(130, "skin_check", NURSE, "intact")
     s.vitals([15, 75], NURSE)
     s.vitals(hourly(120, last), NURSE)

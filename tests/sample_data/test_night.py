@@ -158,7 +158,7 @@ def test_the_night_tells_its_twelve_stories(
 
 
 def test_a_break_silences_the_ventilator_and_not_the_monitor(rows: list[dict[str, str]]) -> None:
-    weaning = [r for r in rows if r["episode"] == "N-0327-08" and "T21:05" < r["at"][10:] < "T21:40"]
+    weaning = [r for r in rows if r["episode"] == "N-0327-08" and "T22:50" < r["at"][10:] < "T23:25"]
     channels = {r["channel"] for r in weaning if r["by"] == "device"}
     assert channels == {"spo2", "hr"}
 
