@@ -85,7 +85,7 @@ def widened(low: float, high: float, values: Sequence[NDArray[np.float64]]) -> t
         return low, high
     least, most = float(found.min()), float(found.max())
     step = next((s for s in _STEPS if s >= (max(high, most) - min(low, least)) / 10), 1000)
-    if least <= low and low > 0:
+    if 0 <= least <= low:
         low = max(floor((least - step * 0.25) / step) * step, 0.0)
     elif least < low:
         low = floor(least / step) * step

@@ -32,10 +32,7 @@ def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
     maker = TraceMaker(
         on.record, on.figures, on.course, on.gas_unit, on.policy.leak.doubt_tidal_volume_above_L_per_min.value
     )
-    latest = max(
-        until, max((r.window_to for r in on.figures.responses if r.headline == "not yet known"), default=0)
-    )
-    end = min(latest, until + 3 * HOUR) if on.course.support.end is None else until
+    end = _end(on)
     end = max(end, start + 30 * MINUTE)
     return StackSpec(
         zone=ZoneInfo(on.zone),
@@ -53,6 +50,15 @@ def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
         name=translate("stack", "Panels of {label} on one clock").format(label=on.figures.label),
         summary=summary_of(on),
     )
+
+
+def _end(on: EpisodeOnScreen) -> Instant:
+    """Now, or the end of a window still open; where support has ended, that end or the last gas after it."""
+    until = on.course.until
+    if on.course.support.end is not None:
+        return max(on.course.support.end, *(g.at for g in on.figures.gases), 0)
+    open_ends = [r.window_to for r in on.figures.responses if r.headline == "not yet known"]
+    return min(max(until, *open_ends, 0), until + 3 * HOUR)
 
 
 def _start(on: EpisodeOnScreen) -> Instant:

@@ -69,9 +69,12 @@ def ordered(ward: Sequence[EpisodeFigures], order: Order) -> tuple[EpisodeFigure
 
 
 def shown(ward: Sequence[EpisodeFigures], which: Shown, text: str = "") -> tuple[EpisodeFigures, ...]:
-    """The episodes that pass the filter and hold `text` in label, location or indication."""
-    words = text.casefold().split()
-    return tuple(f for f in ward if _passes(f, which) and _holds(f, words))
+    """The episodes that pass the filter and hold `text` in label, location or indication: as it is typed
+    where any does, else word by word."""
+    passed = tuple(f for f in ward if _passes(f, which))
+    wanted = " ".join(text.casefold().split())
+    whole = tuple(f for f in passed if wanted in _searched(f))
+    return whole or tuple(f for f in passed if all(w in _searched(f) for w in wanted.split()))
 
 
 def _passes(f: EpisodeFigures, which: Shown) -> bool:
@@ -89,11 +92,9 @@ def _passes(f: EpisodeFigures, which: Shown) -> bool:
     return True
 
 
-def _holds(f: EpisodeFigures, words: Sequence[str]) -> bool:
-    text = " ".join(
-        str(x) for x in (f.label, f.episode, f.profile.get("location"), f.profile.get("indication")) if x
-    )
-    return all(w in text.casefold() for w in words)
+def _searched(f: EpisodeFigures) -> str:
+    parts = (f.label, f.episode, f.profile.get("location"), f.profile.get("indication"))
+    return " ".join(str(x) for x in parts if x).casefold()
 
 
 def first_to_see(ward: Sequence[EpisodeFigures]) -> EpisodeFigures | None:

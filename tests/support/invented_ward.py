@@ -56,14 +56,18 @@ class Bed:
 _seq = count(1)
 
 
-def record_of(key: str, rows: Iterable[tuple[str, dict[str, str]]], samples: Iterable[DeviceSamples] = ()) -> Episode:
+def record_of(
+    key: str, rows: Iterable[tuple[str, dict[str, str]]], samples: Iterable[DeviceSamples] = ()
+) -> Episode:
     """An episode from rows of (clock, {channel: text, with an optional unit after a space})."""
     entries: list[Entry] = []
     for clock, values in rows:
         for name, text in values.items():
             ch = channel(name)
             number, _, unit = text.partition(" ") if ch.units else (text, "", "")
-            new = from_reading(key, at(clock), read_value(ch, number, unit), by="AB", zone=ZONE, confirmed=True)
+            new = from_reading(
+                key, at(clock), read_value(ch, number, unit), by="AB", zone=ZONE, confirmed=True
+            )
             seq = next(_seq)
             entries.append(recorded(new, seq, f"e{seq}", at(clock)))
     return build_episode(key, standing(entries), samples)
@@ -74,10 +78,14 @@ def device(key: str, name: str, since: str, level: float, swing: float, drift: f
     n = (NOW - at(since)) // MINUTE
     noise = np.random.default_rng(sum(map(ord, key + name))).normal(0, swing, n)
     v = level + drift * np.arange(n) / 60 + noise
-    return DeviceSamples(key, name, "device", at(since) + np.arange(n, dtype=np.int64) * MINUTE, np.maximum(v, 0).round(0))
+    return DeviceSamples(
+        key, name, "device", at(since) + np.arange(n, dtype=np.int64) * MINUTE, np.maximum(v, 0).round(0)
+    )
 
 
-def devices(key: str, since: str, rr: float, leak: float, vte: float, drift: float = 0.0) -> tuple[DeviceSamples, ...]:
+def devices(
+    key: str, since: str, rr: float, leak: float, vte: float, drift: float = 0.0
+) -> tuple[DeviceSamples, ...]:
     return (device(key, "rr_total", since, rr, 1.6, drift), device(key, "leak", since, leak, 4),
             device(key, "vte", since, vte, 45), device(key, "spo2", since, 90, 1.0))  # fmt: skip
 
@@ -227,7 +235,17 @@ def leaking(n: int) -> Bed:
 
 def ward() -> tuple[Bed, ...]:
     """Nine episodes of a night."""
-    return (improving(), failing(), ended(), leaking(2), on_cpap(), leaking(9), leaking(10), leaking(11), leaking(14))
+    return (
+        improving(),
+        failing(),
+        ended(),
+        leaking(2),
+        on_cpap(),
+        leaking(9),
+        leaking(10),
+        leaking(11),
+        leaking(14),
+    )
 
 
 __all__ = ["END", "HOUR", "NOW", "START", "ZONE", "Bed", "at", "ward"]

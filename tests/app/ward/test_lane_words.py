@@ -1,0 +1,131 @@
+"""A lane says what the figures say: state, verdict, flags, due, every item in a whole sentence."""
+
+import pytest
+
+from app.chart.shapes import LaneKind
+from app.course import course_of
+from app.theme import GasState, Tier, Verdict
+from app.ward.lane_words import LaneWords, OnWard, short_flags
+from app.words import Reader
+from tests.support.invented_ward import (
+    NOW,
+    ZONE,
+    at,
+    ended,
+    failing,
+    improving,
+    leaking,
+    on_cpap,
+    record_of,
+    ward,
+)
+
+WORDS = LaneWords(Reader(ZONE, "mmHg"), NOW)
+
+
+def lane_of(bed, **values):
+    return WORDS.lane(
+        OnWard(bed.figures, course_of(bed.record, NOW)), first=values.pop("first", False), **values
+    )
+
+
+def items(lane, kind):
+    return [i for i in lane.items if i.kind is kind]
+
+
+def test_the_failing_lane():
+    lane = lane_of(failing(), first=True)
+    assert (lane.title, lane.state, lane.verdict, lane.tier) == (
+        "Bed 7",
+        GasState.SEVERE,
+        Verdict.WORSE,
+        Tier.ESCALATE,
+    )
+    assert lane.first_word
+    assert lane.due_late
+    assert "overdue 10 min" in lane.due_word
+    assert [i.at for i in items(lane, LaneKind.GAS)] == [
+        at("20:50"),
+        at("22:10"),
+        at("23:20"),
+        at("00:40"),
+        at("04:20"),
+    ]
+    assert [i.verdict for i in items(lane, LaneKind.GAS)][-1] is Verdict.WORSE
+    assert items(lane, LaneKind.BREAK)[0].end == at("01:35")
+
+
+def test_sentences_carry_values_units_and_times():
+    lane = lane_of(failing())
+    gas = items(lane, LaneKind.GAS)[-1].sentence
+    assert "04:20" in gas
+    assert "pH 7.22" in gas
+    assert "74 mmHg" in gas
+    assert "1 h 15 min after IPAP 20 cmH2O at 03:05" in gas
+    change = items(lane, LaneKind.SETTING)[1].sentence
+    assert change == "22:20 IPAP 12 to 16 cmH2O"
+    assert "25 min" in items(lane, LaneKind.BREAK)[0].sentence
+
+
+def test_weaker_flags_of_a_group_stay_under_the_strongest():
+    lane = lane_of(failing())
+    assert len(items(lane, LaneKind.FLAG)) == 2
+    assert lane.flag_word.endswith("+1")
+
+
+def test_in_kilopascal():
+    words = LaneWords(Reader(ZONE, "kPa"), NOW)
+    bed = failing()
+    lane = words.lane(OnWard(bed.figures, course_of(bed.record, NOW)), first=False)
+    assert "PaCO2 9.9 kPa" in items(lane, LaneKind.GAS)[-1].sentence
+    assert "mmHg" not in lane.sentence
+
+
+def test_an_open_window_is_drawn_and_a_judged_one_is_not():
+    assert items(lane_of(on_cpap()), LaneKind.WINDOW)[0].end == at("06:05")
+    assert items(lane_of(improving()), LaneKind.WINDOW) == []
+
+
+def test_an_ended_lane_is_closed_and_owes_nothing():
+    lane = lane_of(ended())
+    assert lane.closed
+    assert lane.due_word == "ended 00:10, weaned"
+    assert lane.flag_word == ""
+
+
+def test_two_with_one_label_are_told_apart():
+    assert "from 22:45" in lane_of(leaking(2), ambiguous=True).subtitle
+
+
+def test_an_episode_with_nothing_but_a_label_still_has_a_lane():
+    from core.judgement.shapes import EpisodeFigures
+
+    record = record_of("E", [("20:00", {"label": "Bed 1"})])
+    lane = WORDS.lane(OnWard(EpisodeFigures("E", NOW, "Bed 1", ZONE), course_of(record, NOW)), first=False)
+    assert lane.state is None
+    assert lane.state_word == "no gas yet"
+    assert lane.due_word == "nothing due"
+    assert "indication not recorded" in lane.subtitle
+
+
+@pytest.mark.parametrize("bed", ward(), ids=lambda b: b.figures.label)
+def test_every_item_is_a_sentence_of_its_own(bed):
+    lane = lane_of(bed)
+    assert lane.sentence.startswith(bed.figures.label)
+    assert all(len(i.sentence) > 5 for i in lane.items)
+    assert "nan" not in " ".join(i.sentence + i.word for i in lane.items).lower()
+    assert "None" not in " ".join(i.sentence + i.word for i in lane.items)
+
+
+@pytest.mark.parametrize(
+    ("names", "told"),
+    [
+        ([], ""),
+        (["A"], "A"),
+        (["A" * 60, "B"], "A" * 60 + " +1"),
+        (["pH below 7.30: a higher level", "GCS fallen"], "pH below 7.30; GCS fallen"),
+        (["A" * 20, "B" * 20, "C"], "A" * 20 + " +2"),
+    ],
+)
+def test_short_flags_never_hide_that_there_are_more(names, told):
+    assert short_flags(names) == told

@@ -1,0 +1,71 @@
+"""Order and filter of lanes."""
+
+from dataclasses import replace
+
+from app.ward.ordering import Order, Shown, first_to_see, natural, next_due, ordered, shown
+from core.judgement.shapes import Concern, DueFigure, EpisodeFigures, SupportFigure
+from core.record.message import Message
+from tests.support.invented_ward import at, ward
+
+FIGURES = [b.figures for b in ward()]
+
+
+def labels(figures):
+    return [f.label for f in figures]
+
+
+def test_by_concern_the_failing_one_is_first_and_the_ended_last():
+    order = labels(ordered(FIGURES, Order.CONCERN))
+    assert order[0] == "Bed 7"
+    assert order[-1] == "Bed 5"
+
+
+def test_by_bed_counts_as_people_do_and_the_ended_stand_last():
+    assert labels(ordered(FIGURES, Order.BED)) == [
+        "Bed 2",
+        "Bed 3",
+        "Bed 7",
+        "Bed 9",
+        "Bed 10",
+        "Bed 11",
+        "Bed 12",
+        "Bed 14",
+        "Bed 5",
+    ]
+
+
+def test_by_due_the_overdue_is_first():
+    assert labels(ordered(FIGURES, Order.DUE))[0] == "Bed 7"
+
+
+def test_filters():
+    assert "Bed 3" not in labels(shown(FIGURES, Shown.NOT_RESPONDING))
+    assert "Bed 7" in labels(shown(FIGURES, Shown.NOT_RESPONDING))
+    assert "Bed 5" not in labels(shown(FIGURES, Shown.NOT_RESPONDING))
+    assert "Bed 12" not in labels(shown(FIGURES, Shown.DUE))
+    assert labels(shown(FIGURES, Shown.ALL, "bay c")) == ["Bed 12"]
+    assert labels(shown(FIGURES, Shown.ALL, "copd 7")) == ["Bed 7"]
+    assert shown(FIGURES, Shown.ALL, "nobody") == ()
+
+
+def test_a_gas_due_is_told_before_care_that_is_later_overdue():
+    because = Message("x")
+    items = (DueFigure("skin_check", because, at("01:00"), at("02:00"), "overdue"),
+             DueFigure("gas", because, at("04:00"), at("05:00"), "overdue"),
+             DueFigure("reassessment", because, at("06:00"), at("07:00"), "open"))  # fmt: skip
+    assert next_due(EpisodeFigures("E", at("05:30"), due=items)).what == "gas"
+    assert next_due(EpisodeFigures("E", at("05:30"), due=items[2:])).what == "reassessment"
+    assert next_due(EpisodeFigures("E", at("05:30"), due=(replace(items[0], state="done"),))) is None
+
+
+def test_nobody_is_seen_first_where_all_is_quiet():
+    quiet = EpisodeFigures("E", 0, concern=Concern(5))
+    assert (
+        first_to_see([quiet, EpisodeFigures("F", 0, support=SupportFigure(ended_at=1), concern=Concern(6))])
+        is None
+    )
+    assert first_to_see(FIGURES).label == "Bed 7"
+
+
+def test_natural_order_is_total_for_odd_labels():
+    assert sorted(["", "Bed", "7", "Bed 7a", "Bed 07"], key=natural)
