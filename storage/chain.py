@@ -21,18 +21,17 @@ _UNCHAINED = frozenset({"salt", "blob", "data"})
 ROW_COLUMNS: dict[str, tuple[str, ...]] = {
     t.name: tuple(c.name for c in t.columns if c.name not in _UNCHAINED) for t in LEDGER_ROWS
 }
+_WITH_SHA = frozenset({"chunk", "document"})
+_encode = json.JSONEncoder(ensure_ascii=False, separators=(",", ":"), allow_nan=False).encode
 _HEADER = tuple(c.name for c in batch.columns if c.name != "hash")
 
 
 def row_digest(table: str, row: Mapping[str, Any]) -> str:
     """The digest of one ledger row, as hex."""
-    values = [_plain(row[name]) for name in ROW_COLUMNS[table]]
-    text = json.dumps([table, *values], ensure_ascii=False, separators=(",", ":"), allow_nan=False)
-    return sha256(bytes(row["salt"]) + text.encode()).hexdigest()
-
-
-def _plain(value: Any) -> Any:
-    return bytes(value).hex() if isinstance(value, bytes | memoryview) else value
+    values = [table, *(row[name] for name in ROW_COLUMNS[table])]
+    if table in _WITH_SHA:
+        values = [value.hex() if isinstance(value, bytes) else value for value in values]
+    return sha256(row["salt"] + _encode(values).encode()).hexdigest()
 
 
 def rows_digest(digests: Iterable[str]) -> str:
@@ -45,7 +44,7 @@ def rows_digest(digests: Iterable[str]) -> str:
 
 def batch_hash(header: Mapping[str, Any]) -> str:
     """The hash of a batch: over all its facts, its rows' digest and the hash before it among them."""
-    text = json.dumps([header[name] for name in _HEADER], ensure_ascii=False, separators=(",", ":"))
+    text = _encode([header[name] for name in _HEADER])
     return sha256(text.encode()).hexdigest()
 
 

@@ -27,6 +27,7 @@ from storage.rules import is_device_channel
 Words = NDArray[np.uint64]
 _PAD = 64
 _LONGEST = 40
+_MANY = 64
 _MASKS = np.array([0, *((1 << 8 * k) - 1 for k in range(1, 8)), 2**64 - 1], np.uint64)
 _DEVICE = np.uint64(int.from_bytes(b"device", "little"))
 _GROUPED = ("episode", "channel", "unit", "leak_definition")
@@ -57,7 +58,7 @@ class _Fields:
 
 def _fields(block: TextBlock, columns: int) -> _Fields | None:
     """Cut a block into fields; None where it is not one plain row per line."""
-    data = block.data.replace(b"\r\n", b"\n")
+    data = block.data.replace(b"\r\n", b"\n") if b"\r" in block.data else block.data
     if b'"' in data or b"\r" in data or b"\n\n" in data:
         return None
     padded = data + bytes(_PAD)
@@ -90,8 +91,11 @@ class DeviceRows:
             return None
         rows = self._plain_rows(fields)
         left = np.ones(block.lines, np.bool_)
-        for group in self._groups(fields, rows):
-            left[self._take_group(fields, group, block.first_line)] = False
+        if rows.size:
+            t, good = self._times(fields, rows)
+            for places in self._groups(fields, rows):
+                of_group = places[good[places]]
+                left[self._take_group(fields, rows[of_group], t[of_group], block.first_line)] = False
         return [int(i) for i in np.flatnonzero(left)]
 
     def _plain_rows(self, fields: _Fields) -> Offsets:
@@ -107,9 +111,7 @@ class DeviceRows:
         return np.flatnonzero(plain)
 
     def _groups(self, fields: _Fields, rows: Offsets) -> Iterable[Offsets]:
-        """The rows that share episode, channel, unit and definition of leak, group by group."""
-        if rows.size == 0:
-            return
+        """Places in `rows` that share episode, channel, unit and definition of leak, group by group."""
         mixed = np.zeros(rows.size, np.uint64)
         parts: list[Words] = []
         for name in _GROUPED:
@@ -122,25 +124,29 @@ class DeviceRows:
                 mixed = (mixed ^ word) * _MIX
                 mixed ^= mixed >> np.uint64(29)
             mixed = (mixed ^ fields.length[rows, column].astype(np.uint64)) * _MIX
-        _kinds, first, inverse = np.unique(mixed, return_index=True, return_inverse=True)
+        _kinds, first, inverse, counts = np.unique(
+            mixed, return_index=True, return_inverse=True, return_counts=True
+        )
+        if first.size > _MANY and first.size * 8 > rows.size:
+            return  # nearly every row a group of its own: reading them one by one is quicker
         same = np.ones(rows.size, np.bool_)
         for word in parts:  # equal mixes are not yet equal fields
             same &= word == word[first][inverse]
-        for kind in range(first.size):
-            yield rows[(inverse == kind) & same]
+        order = np.argsort(inverse, kind="stable")
+        for places in np.split(order, np.cumsum(counts)[:-1]):
+            yield places[same[places]]
 
-    def _take_group(self, fields: _Fields, rows: Offsets, first_line: int) -> Offsets:
+    def _take_group(self, fields: _Fields, rows: Offsets, t: Times, first_line: int) -> Offsets:
         """Take the rows of one group that can be read; which ones they were."""
         none = rows[:0]
+        if rows.size == 0:
+            return none
         texts = {name: self._group_text(fields, int(rows[0]), name) for name in _GROUPED}
         channel = CHANNELS.get(texts["channel"])
         if channel is None or not is_device_channel(channel.key) or not _is_tidy(texts):
             return none
-        t, good = self._times(fields, rows)
-        good &= t <= self._latest
         v, decimals, read = self._read_values(fields, rows, channel, texts["unit"])
-        good &= read
-        rows, t, v = rows[good], t[good], v[good]
+        rows, t, v = rows[read], t[read], v[read]
         if rows.size:
             lines = (first_line + rows).astype(np.int32)
             self._spool.add(
@@ -153,13 +159,22 @@ class DeviceRows:
         return "" if column is None else fields.text(row, column)
 
     def _times(self, fields: _Fields, rows: Offsets) -> tuple[Times, NDArray[np.bool_]]:
+        """The instants of rows and which could be read and may be: rows of one moment follow each other."""
         column = self._columns.names.index("at")
-        t, good = read_instants(fields.data, fields.start[rows, column], fields.length[rows, column])
+        new = np.ones(rows.size, np.bool_)
+        new[1:] = fields.length[rows[1:], column] != fields.length[rows[:-1], column]
+        for part in range(4):  # a field of 32 bytes, the longest that gets here
+            word = fields.word(column, part, rows)
+            new[1:] |= word[1:] != word[:-1]
+        once = rows[new]
+        t, good = read_instants(fields.data, fields.start[once, column], fields.length[once, column])
         for i in np.flatnonzero(~good):
-            at = self._instant(fields.text(int(rows[i]), column))
+            at = self._instant(fields.text(int(once[i]), column))
             if at is not None:
                 t[i], good[i] = at, True
-        return t, good
+        good &= t <= self._latest
+        which = np.cumsum(new) - 1
+        return t[which], good[which]
 
     def _instant(self, text: str) -> Instant | None:
         """One instant in a less plain form; kept, since rows of one moment follow each other."""

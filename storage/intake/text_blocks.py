@@ -50,14 +50,9 @@ class BlockReader:
     def __iter__(self) -> Iterator[TextBlock]:
         total = self._path.stat().st_size
         with self._path.open("rb") as file:
-            line = 1
-            for data in self._whole_lines(file, total):
-                block = TextBlock(data, line, data.count(b"\n"))
-                _check_text(block)
-                yield block
-                line += block.lines
+            yield from self._whole_lines(file, total)
 
-    def _whole_lines(self, file: BinaryIO, total: int) -> Iterator[bytes]:
+    def _whole_lines(self, file: BinaryIO, total: int) -> Iterator[TextBlock]:
         carried = self._start(file)
         line = 1
         while True:
@@ -76,8 +71,10 @@ class BlockReader:
                 raise _too_long(data, line)
             carried = data[end:]
             if end:
-                yield data[:end]
-                line += data.count(b"\n", 0, end)
+                whole = TextBlock(data[:end], line, data.count(b"\n", 0, end))
+                _check_text(whole)
+                yield whole
+                line += whole.lines
             if len(carried) > MAX_LINE and b"\n" not in carried:
                 raise _too_long(carried, line)
 
@@ -96,12 +93,15 @@ class BlockReader:
         return data
 
 
-def _last_lines(data: bytes, line: int) -> bytes:
+def _last_lines(data: bytes, line: int) -> TextBlock:
     """The end of the file, with the line end that it may lack."""
     tail = data[data.rfind(b"\n") + 1 :]
     if len(tail) > MAX_LINE:
         raise _too_long(tail, line + data.count(b"\n"))
-    return data if data.endswith(b"\n") else data + b"\n"
+    whole = data if data.endswith(b"\n") else data + b"\n"
+    block = TextBlock(whole, line, whole.count(b"\n"))
+    _check_text(block)
+    return block
 
 
 def cut_at(data: bytes) -> int:
@@ -111,6 +111,8 @@ def cut_at(data: bytes) -> int:
     serves, and the parser judges.
     """
     last = end = data.rfind(b"\n") + 1
+    if b'"' not in data:
+        return end
     odd = data.count(b'"', 0, end) % 2
     while odd and end:
         before = data.rfind(b"\n", 0, end - 1) + 1
