@@ -95,6 +95,7 @@ COURSE: Final[dict[str, str]] = {
 TRENDS: Final[dict[str, str]] = {
     "leak.definition_not_known": "what the device calls leak is not known: a trend only, no limit",
     "leak.duty_assumed": "inspiration is taken as {share:fraction} of the breath",
+    "leak.meaning_changed": "what the device calls leak changed at {at:time}: only what came after counts",
     "leak.no_values": "no leak values",
     "leak.pressure_not_known": "the port's own leak is not known without pressures",
     "trend.few_points": "{points} points: too few to tell a trend from chance",
