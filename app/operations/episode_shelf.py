@@ -1,10 +1,11 @@
-"""Episodes that were built already, kept while nothing new was recorded for them."""
+"""Episodes that were built already, and the early stages of their figures, kept while nothing new was recorded."""
 
 from __future__ import annotations
 
 from collections import OrderedDict
 from typing import TYPE_CHECKING
 
+from core.figures.stage_cache import StageCache
 from core.record.episode import Episode
 
 if TYPE_CHECKING:
@@ -20,6 +21,8 @@ class EpisodeShelf:
     def __init__(self) -> None:
         self._head = -1
         self._kept: OrderedDict[str, Episode] = OrderedDict()
+        self.stages = StageCache(_MOST)
+        """For `episode_figures` of the episodes that this shelf gives."""
 
     def get(self, store: Store, key: str) -> Episode:
         """The episode as the store holds it now; built anew only when it changed."""

@@ -7,9 +7,11 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from app.operations.episode import load
+from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome, report
 from app.operations.policy import in_force
 from core.figures.episode_figures import episode_figures
+from core.figures.stage_cache import StageCache
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
@@ -72,7 +74,7 @@ def of_episode(store: Store, who: str, now: Instant, request: EpisodeRequest) ->
     """
     record = load(store, request.episode, request.as_known_at)
     policy = in_force(store, _head_for(store, request.as_known_at))
-    made = episode_figures(record, request.as_of, policy)
+    made = episode_figures(record, request.as_of, policy, _stages(store, request.as_known_at))
     return Outcome(EpisodeAnswer(record, made), store.head())
 
 
@@ -80,13 +82,14 @@ def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outco
     """The figures of the ward's episodes in order of concern. Reports progress by episode."""
     head = store.head()
     policy = in_force(store, _head_for(store, request.as_known_at))
-    keys = _keys(store, request)
+    keys, stages = _keys(store, request), _stages(store, request.as_known_at)
     answers = []
     for number, key in enumerate(keys):
         report(number, len(keys))
         record = load(store, key, request.as_known_at)
         if _stands(record, request):
-            answers.append(EpisodeAnswer(record, episode_figures(record, request.as_of, policy)))
+            made = episode_figures(record, request.as_of, policy, stages)
+            answers.append(EpisodeAnswer(record, made))
     answers.sort(key=lambda a: concern_order(a.figures))
     return Outcome(WardAnswer(request.as_of, tuple(answers)), head)
 
@@ -94,6 +97,11 @@ def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outco
 def concern_order(figures: EpisodeFigures) -> tuple[int, float, str]:
     """The order in which episodes are to be seen: rank, then order inside it, then label."""
     return (figures.concern.rank, figures.concern.order, figures.label)
+
+
+def _stages(store: Store, as_known_at: Instant | None) -> StageCache | None:
+    """The kept stages go with the shelf's own records; a record as known earlier is another one."""
+    return shelf_of(store).stages if as_known_at is None else None
 
 
 def _head_for(store: Store, known_at: Instant | None) -> int | None:
