@@ -12,6 +12,7 @@ from dataclasses import dataclass, replace
 from core.judgement.context import Context
 from core.judgement.flag_history import History, history_of, transitions, word_on
 from core.judgement.markers.observed import Observed
+from core.judgement.markers.population import inside
 from core.judgement.markers.registry import MARKERS, ORDER, Marker
 from core.judgement.markers.spells import Spell, united, without_flicker
 from core.judgement.policy_sections import MarkerRule
@@ -48,7 +49,10 @@ class _Met:
 
 def spells_of(seen: Observed, marker: Marker, rule: MarkerRule) -> list[Spell]:
     """The spells of one marker: flicker joined, ended with support, outside its population only as a remark."""
-    found = [s for s in marker.find(seen, rule) if rule.outside == "remark" or not s.outside_population]
+    found = list(marker.find(seen, rule))
+    if not marker.judges_population and rule.population != "any":
+        found = [replace(s, outside_population=not inside(seen, rule.population, s.since)) for s in found]
+    found = [s for s in found if rule.outside == "remark" or not s.outside_population]
     if not found:
         return []
     spells = without_flicker(united(found), int(rule.gap_min * MINUTE), seen.as_of)

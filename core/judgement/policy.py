@@ -49,13 +49,39 @@ class Policy(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=Tr
     hash: str = ""
 
 
+@lru_cache(maxsize=16)
 def read_policy(text: str) -> Policy:
-    """Read a policy's TOML text.
+    """Read a policy's TOML text. A marker or due item that the text does not name is as shipped.
+
+    A ward that wants one off says `on = false`: what is only missing (a copy older than the marker) must not go
+    silent.
 
     Raises:
         RecordError: `policy.unreadable` (not TOML) or `policy.invalid` (unknown key, wrong type, missing
-            value), with the parser's words.
+            value), with the parser's words. `policy_check.check` names every fault with its line.
     """
+    policy, shipped = _converted(text), shipped_policy()
+    for kind, own, ours in (("markers", policy.markers, shipped.markers), ("due", policy.due, shipped.due)):
+        for key, rule in own.items():
+            if key not in ours:
+                raise refuse("policy.invalid", detail=f"{kind}.{key} is not known")
+            lacking = _lacking(rule, ours[key])
+            if lacking:
+                raise refuse("policy.invalid", detail=f"{kind}.{key} lacks {', '.join(lacking)}")
+    return msgspec.structs.replace(
+        policy, markers={**shipped.markers, **policy.markers}, due={**shipped.due, **policy.due}
+    )
+
+
+def _lacking(rule: MarkerRule | DueRule, shipped: MarkerRule | DueRule) -> list[str]:
+    """The numbers that the code of a rule reads and that it does not give."""
+    lacking = [f"limits.{k}" for k in shipped.limits if k not in rule.limits]
+    if isinstance(rule, MarkerRule) and isinstance(shipped, MarkerRule):
+        lacking += [f"pressures.{k}" for k in shipped.pressures if k not in rule.pressures]
+    return lacking
+
+
+def _converted(text: str) -> Policy:
     try:
         tables: dict[str, Any] = tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
@@ -80,4 +106,4 @@ def shipped_text() -> str:
 @lru_cache(maxsize=1)
 def shipped_policy() -> Policy:
     """The policy that a new store begins with."""
-    return read_policy(shipped_text())
+    return _converted(shipped_text())

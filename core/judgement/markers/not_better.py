@@ -278,15 +278,25 @@ def _small(seen: Observed, rule: MarkerRule, at: Instant, gas: GasFigure) -> tup
 
 
 def gain_lost(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
-    """A relapse from the best gas since the start, beyond noise; ends with a gas that is no relapse."""
+    """A relapse of pH and PaCO2 from the best gas since the start, beyond noise; ends with a gas that is none."""
+    return _relapse(seen, "ph")
+
+
+def oxygen_gain_lost(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
+    """A relapse of P/F from the best since the start, beyond noise; ends with a gas that is none."""
+    return _relapse(seen, "pf")
+
+
+def _relapse(seen: Observed, quantity: str) -> list[Spell]:
     points = []
     for gas in seen.on_support_gases:
         since = seen.since_start.get(gas.at)
         if since is None:
             continue
         said = since.reasons.get("gain_lost") if since.gain_lost else None
-        told = () if said is None else (_lost(said, gas.at), *say.gas_doubts(gas))
-        points.append(Point(gas.at, since.gain_lost, told))
+        lost = said is not None and said.values["quantity"] == quantity
+        told = (_lost(said, gas.at), *say.gas_doubts(gas)) if lost and said is not None else ()
+        points.append(Point(gas.at, lost, told))
     return from_points(points)
 
 

@@ -19,7 +19,7 @@ def inside(seen: Observed, population: str, at: Instant) -> bool:
         case "any":
             return True
         case "on support":
-            return _on_support(seen, at)
+            return _support_runs(seen, at)
         case "acute hypercapnia":
             return gas is not None and arms.acute_hypercapnia(gas, seen.policy)
         case "hypercapnic copd":
@@ -33,6 +33,12 @@ def inside(seen: Observed, population: str, at: Instant) -> bool:
         case "not neuromuscular or obesity hypoventilation":
             return indication not in _RATE_IS_THE_AIM
     raise ValueError(f"population {population!r} is not known")
+
+
+def _support_runs(seen: Observed, at: Instant) -> bool:
+    """Support has begun and not ended; a break of it belongs to it."""
+    start, end = seen.support.start, seen.support.end
+    return start is not None and start <= at and (end is None or at <= end)
 
 
 def _on_support(seen: Observed, at: Instant) -> bool:

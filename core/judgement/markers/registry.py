@@ -45,16 +45,18 @@ LEAK: Final = frozenset({"leak", "leak_definition", "rr_total", "vte", "mv"})
 
 @dataclass(frozen=True, slots=True)
 class Marker:
-    """One marker. `channels` are what it reads; `after_end`: it outlives the end of support."""
+    """One marker. `channels` are what it reads; `after_end`: it outlives the end of support.
+    `judges_population`: it asks at each gas itself; else the population is asked where a spell begins."""
 
     key: str
     find: Find
     channels: frozenset[str]
     after_end: bool = False
+    judges_population: bool = False
 
 
-def _of(find: Find, channels: frozenset[str], after_end: bool = False) -> Marker:
-    return Marker(find.__name__, find, channels, after_end)
+def _of(find: Find, channels: frozenset[str], after_end: bool = False, asks: bool = False) -> Marker:
+    return Marker(find.__name__, find, channels, after_end, asks)
 
 
 JUDGED: Final = GAS | SUPPORT | RATE | {"spo2"}
@@ -71,9 +73,9 @@ _ALL = (
     _of(consciousness.rate_below_12_drowsy, frozenset({"rr", "gcs", "acvpu"})),
     _of(co2.rate_falling_worse_gas, JUDGED),
     _of(oxygenation.pao2_below_45_on_highest_oxygen, GAS | SUPPORT),
-    _of(scores.hacor_above_8, JUDGED | {"gcs", "hr", "indication"}),
-    _of(scores.hacor_above_5, JUDGED | {"gcs", "hr", "indication"}),
-    _of(oxygenation.pf_low_at_1h, GAS | SUPPORT | {"indication"}),
+    _of(scores.hacor_above_8, JUDGED | {"gcs", "hr", "indication"}, asks=True),
+    _of(scores.hacor_above_5, JUDGED | {"gcs", "hr", "indication"}, asks=True),
+    _of(oxygenation.pf_low_at_1h, GAS | SUPPORT | {"indication"}, asks=True),
     _of(circulation.spo2_fall_after_pressure, RANGE | SUPPORT),
     _of(contraindications.undrained_pneumothorax, frozenset({"pneumothorax"})),
     _of(acidosis.ph_below_severe, GAS | SUPPORT),
@@ -82,8 +84,9 @@ _ALL = (
     _of(not_better.ph_not_better, JUDGED | {"gcs"}),
     _of(co2.paco2_rising, JUDGED | {"usual_paco2"}),
     _of(not_better.gain_lost, JUDGED),
+    _of(not_better.oxygen_gain_lost, JUDGED),
     _of(acidosis.acidosis_off_support, GAS | SUPPORT),
-    _of(not_better.too_little_support, GAS | SUPPORT | {"support_reason", "indication"}),
+    _of(not_better.too_little_support, GAS | SUPPORT | {"support_reason", "indication"}, asks=True),
     _of(acidosis.ph_below_715_before_support, GAS | SUPPORT),
     _of(consciousness.gcs_below_11, frozenset({"gcs"})),
     _of(consciousness.gcs_fall, frozenset({"gcs"})),
@@ -91,14 +94,14 @@ _ALL = (
     _of(consciousness.rate_falling_worse_gcs, frozenset({"rr", "gcs"})),
     _of(breathing.rr_above_35, RATE | SUPPORT | LEAK),
     _of(breathing.rr_above_30, RATE | SUPPORT | LEAK),
-    _of(breathing.backup_takeover, JUDGED | LEAK | {"spont_percent", "gcs", "indication"}),
-    _of(tidal_volume.vt_high_hypoxaemic, JUDGED | LEAK | {"height", "sex", "indication"}),
+    _of(breathing.backup_takeover, JUDGED | LEAK | {"spont_percent", "gcs", "indication"}, asks=True),
+    _of(tidal_volume.vt_high_hypoxaemic, JUDGED | LEAK | {"height", "sex", "indication"}, asks=True),
     _of(oxygenation.pao2_below_45, GAS),
     _of(saturation.spo2_deep, RANGE),
-    _of(oxygenation.pf_below_150_ards, GAS | SUPPORT | {"indication", "pulmonary_ards"}),
-    _of(oxygenation.sf_below_985, GAS | SUPPORT | RANGE),
+    _of(oxygenation.pf_below_150_ards, GAS | SUPPORT | {"indication", "pulmonary_ards"}, asks=True),
+    _of(oxygenation.sf_below_985, GAS | SUPPORT | RANGE, asks=True),
     _of(oxygenation.fio2_need_rising, SUPPORT | RANGE),
-    _of(scores.hacor_above_5_later, JUDGED | {"gcs", "hr", "indication"}),
+    _of(scores.hacor_above_5_later, JUDGED | {"gcs", "hr", "indication"}, asks=True),
     _of(saturation.spo2_below_range, RANGE),
     _of(saturation.over_oxygenation, RANGE | SUPPORT),
     _of(circulation.sbp_below_90, frozenset({"sbp"})),
@@ -126,6 +129,11 @@ MARKERS: Final[Mapping[str, Marker]] = MappingProxyType({m.key: m for m in _ALL}
 """In order of strength: of two flags of one group and tier, the earlier one here is the stronger."""
 
 ORDER: Final[Mapping[str, int]] = MappingProxyType({m.key: i for i, m in enumerate(_ALL)})
+
+
+GROUPS: Final = ("acidosis", "oxygen", "consciousness", "breathing", "circulation", "mask", "contraindication",
+                 "timing", "weaning")  # fmt: skip
+"""What flags are about; the name of each stands in `group.<key>`."""
 
 
 def marker_keys() -> tuple[str, ...]:
