@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from math import isnan
 
 from core.record.episode import Episode
-from core.record.instant import Instant
+from core.record.instant import MINUTE, Instant
 from core.record.settings import Settings, SettingsInForce
 from core.record.support import Break, SupportTime, support_time
 
@@ -20,7 +20,7 @@ SHOWN = ("mode", "ipap", "epap", "cpap", "fio2", "o2_flow", "rate_set", "ti", "i
 @dataclass(frozen=True, slots=True)
 class Stretch:
     """Settings in force from `start` to `end`; `changed` names what differs from the stretch before, with
-    its value before."""
+    its value before. A change of this very moment lasts a minute, so that it is seen."""
 
     start: Instant
     end: Instant
@@ -39,6 +39,11 @@ class Course:
     in_force: SettingsInForce
     until: Instant
 
+    def at(self, moment: Instant) -> Stretch | None:
+        """The stretch in force at a moment, its own start included; None before the first and after the end."""
+        found = next((s for s in reversed(self.stretches) if s.start <= moment), None)
+        return found if found is not None and moment <= found.end else None
+
 
 def course_of(episode: Episode, until: Instant) -> Course:
     """The course of an episode as of `until`."""
@@ -50,14 +55,14 @@ def course_of(episode: Episode, until: Instant) -> Course:
 
 
 def _stretches(episode: Episode, in_force: SettingsInForce, end: Instant) -> tuple[Stretch, ...]:
-    moments = [t for t in in_force.moments if t < end]
+    moments = [t for t in in_force.moments if t <= end]
     doubts = _doubtful_moments(episode)
     made: list[Stretch] = []
     before: Settings | None = None
     for i, t in enumerate(moments):
         now = in_force.at(t)
         changed = _changes(before, now)
-        until = moments[i + 1] if i + 1 < len(moments) else end
+        until = moments[i + 1] if i + 1 < len(moments) else max(end, t + MINUTE)
         if made and not changed:
             last = made[-1]
             made[-1] = Stretch(last.start, until, last.settings, last.changed, last.doubtful)

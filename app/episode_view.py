@@ -159,7 +159,7 @@ class EpisodeView(QWidget):
         self.readout.show_moment(
             at,
             self._on.zone,
-            self.stack.settings_at(min(at, self._on.course.until - 1)),
+            self._on.course.at(at),
             self.stack.readings_at(at),
             pointed=instant is not None,
         )

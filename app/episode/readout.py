@@ -8,7 +8,7 @@ from html import escape
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QFrame, QLabel, QSizePolicy, QVBoxLayout
 
-from app.chart.shapes import Look, Reading, RibbonStep
+from app.chart.shapes import Look, Reading
 from app.course import Stretch
 from app.formats import fixed, minutes, wall
 from app.phrases import settings_line
@@ -47,18 +47,17 @@ class Readout(QFrame):
         self._values.setFixedHeight(2 * line)
 
     def show_moment(
-        self, at: Instant, zone: str, step: RibbonStep | None, readings: Iterable[Reading], *, pointed: bool
+        self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool
     ) -> None:
         """Say what stood at a moment; `pointed`: the crosshair is there, else it is now."""
         head = wall(at, zone) if pointed else self.tr("Now, {time}").format(time=wall(at, zone))
-        stretch = step.payload if step is not None else None
         settings = (
             settings_line(stretch.settings)
-            if isinstance(stretch, Stretch)
+            if stretch is not None
             else self.tr("no settings in force")
         )
         age = ""
-        if isinstance(stretch, Stretch):
+        if stretch is not None:
             age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))
         quiet = self._theme.colours.ink_quiet
         self._settings.setText(
