@@ -6,6 +6,7 @@ The grammar stands here; what a command does stands in `app.commands`, imported 
 from __future__ import annotations
 
 import argparse
+import logging
 import sys
 from collections.abc import Callable, Sequence
 from importlib import import_module
@@ -24,6 +25,7 @@ _CAUTION = (
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run a command; without one, open the window. Returns the exit code."""
     _speak_utf8()
+    logging.getLogger("luffmark").addHandler(logging.NullHandler())  # stderr is for the one clear line
     args = parser().parse_args(arguments)
     from app.commands.context import Context, refused
 

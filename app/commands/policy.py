@@ -19,15 +19,40 @@ def run(context: Context, args: argparse.Namespace) -> int:
         return 2
     text = _text_of(args.file)
     if args.what == "check":
-        policy = read_policy(text)
-        context.answer(f"{args.file} is a usable policy. {_named(policy)}", _facts(policy))
-        return 0
+        return _check(context, args.file, text)
     from app.operations import policy as operations
 
     with context.open() as store:
         put = operations.put(store, context.by, context.now(), text).value
     context.answer(f"In force now: {_named(put)}", _facts(put))
     return 0
+
+
+def _check(context: Context, path: Path, text: str) -> int:
+    """Every fault with its line, and what differs from the shipped policy."""
+    from app.words import sentence
+    from core.judgement.policy_check import ERROR, check
+
+    found = check(text)
+    rows = [(f, sentence(f.message)) for f in found.findings]
+    value = {
+        "file": str(path), "usable": found.usable, "hash": found.hash,
+        "findings": [{"line": f.line, "path": f.path, "kind": f.kind, "key": f.message.key, "text": said}
+                     for f, said in rows],
+        "differences": [{"path": d.path, "shipped": d.shipped, "own": d.own} for d in found.differences],
+    }  # fmt: skip
+    remarks = [f"  line {f.line}: {said}" for f, said in rows if f.kind != ERROR]
+    changes = [f"  {d.path}: {d.own} (shipped {d.shipped})" for d in found.differences]
+    if found.usable:
+        head = f"{path} is a usable policy. {_named(read_policy(text))}"
+        listed = [*remarks, *(["Different from the shipped policy:", *changes] if changes else [])]
+        context.answer("\n".join([head, *listed]), value)
+        return 0
+    if context.json:
+        context.answer("", value)
+    faults = [f"  line {f.line}: {said}" for f, said in rows if f.kind == ERROR]
+    print(f"luffmark: {path} is no usable policy: {len(faults)} fault(s).", *faults, sep="\n", file=sys.stderr)
+    return 1
 
 
 def _show(context: Context) -> int:

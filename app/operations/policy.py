@@ -8,7 +8,9 @@ from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
 from core.judgement.policy import Policy, read_policy, shipped_policy, shipped_text
+from core.judgement.policy_check import ERROR, check
 from core.record.instant import Instant
+from core.record.message import RecordError
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -45,8 +47,11 @@ def put(store: Store, who: str, now: Instant, request: str) -> Outcome[Policy]:
     """Put a policy's TOML text in force. Putting an earlier text back is the undo.
 
     Raises:
-        RecordError: `policy.*` where the text is no policy; nothing is changed.
+        RecordError: `policy.*`, the first fault of a text that is no usable policy; nothing is changed.
     """
+    faults = [f for f in check(request).findings if f.kind == ERROR]
+    if faults:
+        raise RecordError(faults[0].message)
     policy = read_policy(request)
     receipt = store.put_policy(request, policy.hash, who, now)
     return Outcome(policy, receipt.last_seq)

@@ -20,19 +20,23 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.gas_doubt": "The gas of {at:time} {doubt:" + _DOUBT + "}.",
     "evidence.hours": "{hours:hours} {what} (limit {limit:trim} h).",
     "evidence.no_reason_logged": "No reason for it is logged.",
+    "evidence.not_trusted": "{quantity:name} was not to be trusted for {minutes:minutes} from {since:time} to "
+        "{at:time}.",
     "evidence.off_support": "Taken off support.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
     "evidence.overdue": "{what:due} was due by {until:time}.",
     "evidence.score": "{score:name}[[ {points:trim} points]][[!points| between {lowest:trim} and {highest:trim}]] "
         "at {at:time}, limit {limit:trim}[[; missing: {missing:list}]].",
-    "evidence.share": "{percent:0} % of breaths, limit {limit:0} %, over {minutes:minutes}.",
-    "evidence.stale": "{quantity:name} of {at:time} is {age_min:minutes} old.",
+    "evidence.score_rise": "{score:name} {before:trim} ({before_at:time}) to at least {lowest:trim} ({at:time}).",
+    "evidence.share": "Off the mask for {percent:0} % of {minutes:minutes} "
+        "({breaks:pick 1=one break;else=# breaks}), limit {limit:0} %.",
+    "evidence.stale": "The newest value, of {at:time}, is {minutes:minutes} old.",
     "evidence.success": "Not acidotic from {since:time} for {hours:hours}.",
     "evidence.support": "{quantity:name}[[ {value:q}]][[!value| not set, one pressure]], "
         "{relation} {limit:q}.",
     "evidence.support_ends": "Support ends at {at:time}.",
     "evidence.sustained": "{quantity:name} {relation} {limit:q} for {minutes:minutes} since {since:time}"
-        "{counted:pick yes=, by readings taken;no=}, median {median:q}.",
+        "[[, median {median:q}]].",
     "evidence.think_of": "Think of {what}.",
     "evidence.timing": "{minutes:minutes} after {anchor:pick start=the start;change=the change;"
         "interface=the new interface;break_end=the break;else=the change} of {anchor_at:time}.",

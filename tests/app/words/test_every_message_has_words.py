@@ -22,7 +22,10 @@ ROOT = Path(__file__).parents[3]
 MAKERS = {"Message", "refuse", "store_error"}
 KEY = re.compile(r"[a-z][a-z0-9_]*\.[a-z][a-z0-9_]*")
 NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*")
-LOG = {"flag.transitions", "entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo", "episode.begin"}
+NAMES_OF_NUMBERS = {"policy_limits.py"}
+"""Modules that name numbers of the policy by their path, written like keys; their messages are calls."""
+LOG = {"flag.transitions", "entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo",
+       "episode.begin"}  # fmt: skip
 """Names of operations in the ledger, written like keys."""
 
 POLICY = shipped_policy()
@@ -113,7 +116,9 @@ def wanted() -> dict[str, Path]:
     found = {
         k: p for k, p in literal_keys().items()
         if k.partition(".")[0] in known and not NOT_KEYS.fullmatch(k) and k not in LOG
+        and p.name not in NAMES_OF_NUMBERS
     }  # fmt: skip
+    found |= {str(c.args[0].value): p for p, c in calls() if isinstance(c.args[0], ast.Constant)}
     for prefix, ends in DYNAMIC.items():
         found |= {prefix + end: ROOT for end in ends}
     return found

@@ -58,7 +58,8 @@ def test_markup_in_a_value_stays_text() -> None:
 def test_a_part_can_stand_only_where_a_value_is_absent() -> None:
     text = "{score}[[ {points}]][[!points| between {low} and {high}]]"
     assert template.fill(text, {"score": "X", "points": 3.0, "low": 3.0, "high": 3.0}, Reader()) == "X 3"
-    assert template.fill(text, {"score": "X", "points": None, "low": 1.0, "high": 5.0}, Reader()) == "X between 1 and 5"
+    values = {"score": "X", "points": None, "low": 1.0, "high": 5.0}
+    assert template.fill(text, values, Reader()) == "X between 1 and 5"
 
 
 def test_moments_near_the_page_are_told_by_the_clock_alone() -> None:
