@@ -13,10 +13,12 @@ import sqlalchemy as sa
 from core.record import instant
 from core.record.entries import Action, Entry
 from core.record.instant import Instant
+from core.record.knowledge import standing
 from core.record.message import RecordError
 from core.record.samples import DeviceSamples, Flags, mask_samples, shift_samples
 from storage import schema as s
 from storage.chunks import decode
+from storage.errors import store_error
 
 _IN_LIMIT = 500
 _e, _b, _c = s.entry.c, s.batch.c, s.chunk.c
@@ -31,7 +33,13 @@ _SELECT_ENTRIES: sa.Select[Any] = sa.select(*_ENTRY_COLUMNS).join_from(
 
 def _entry(row: sa.Row[Any]) -> Entry:
     v: list[Any] = list(row)
-    v[12] = Action(v[12])
+    try:
+        v[12] = Action(v[12])
+        sound = type(v[2]) is int and type(v[18]) is int and (v[3] is None or type(v[3]) is float)
+    except ValueError:
+        sound = False
+    if not sound:
+        raise store_error("store.damaged", detail=f"entry {v[16]}")
     v[13] = v[13] or ""
     return Entry(*v)
 
@@ -53,6 +61,13 @@ def episode_entries(connection: sa.Connection, episode: str, head: int) -> tuple
         return tuple(found.values())
     _add_chains(connection, found, fresh, missing, head)
     return tuple(sorted(found.values(), key=lambda e: e.seq))
+
+
+def texts_of(connection: sa.Connection, channel: str) -> tuple[tuple[str, str], ...]:
+    """The texts of a channel that stand in any episode, as (episode, text), in order of recording."""
+    rows = connection.execute(_SELECT_ENTRIES.where(_e.channel == channel).order_by(_e.seq))
+    found = [x.entry for x in standing(map(_entry, rows))]
+    return tuple((e.episode, e.words) for e in sorted(found, key=lambda e: e.seq) if e.words)
 
 
 def _add_chains(

@@ -158,6 +158,14 @@ class Store:
         with self._opened.database.read() as connection:
             return int(connection.execute(query).scalar() or 0)
 
+    def recorded_beside(self, at: Instant) -> tuple[Instant | None, Instant | None]:
+        """The newest moment before `at` and the earliest after it at which anything was recorded."""
+        when = s.batch.c.recorded_at
+        with self._opened.database.read() as connection:
+            before = connection.execute(sa.select(sa.func.max(when)).where(when < at)).scalar()
+            after = connection.execute(sa.select(sa.func.min(when)).where(when > at)).scalar()
+        return before, after
+
     def changes_since(self, seq: int) -> Changes:
         """What was recorded after a sequence, by this process or another."""
         with self._opened.database.read() as connection:
@@ -227,6 +235,11 @@ class Store:
         """The episodes with no end recorded, in order of first recording; quick in a store of any age."""
         with self._opened.database.read() as connection:
             return index.open_episode_keys(connection)
+
+    def texts_of(self, channel: str) -> tuple[tuple[str, str], ...]:
+        """Every text that stands for a text channel, with its episode: (episode, text)."""
+        with self._opened.database.read() as connection:
+            return reading.texts_of(connection, channel)
 
     def known_entry_ids(self, ids: Sequence[str]) -> frozenset[str]:
         """Those of `ids` that are entries of the store."""

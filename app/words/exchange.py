@@ -1,36 +1,46 @@
-"""What intake says of files from other systems: codes, results, patients and times it cannot take."""
+"""What is found in files of results and tables: why a value is refused, set aside or doubtful, and what to do."""
 
 from typing import Final
 
-TEMPLATES: Final[dict[str, str]] = {
+RESULTS: Final[dict[str, str]] = {
     "code.ambiguous_saturation":
-        "The code {code} does not say whether the saturation is of a gas or a pulse oximeter.",
-    "code.not_ours": "The code {code}[[ ({name})]] names nothing that is kept here.",
-    "fhir.modifier": "The observation carries a modifier that may change its meaning. Accepted: {accepted}.",
-    "fhir.no_resource": "The file holds no FHIR resource. Accepted: {accepted}.",
-    "fhir.other_resource": "{count} resource(s) of kind {kind} were passed over.",
-    "gas.two_sites": "{channel:name}: one moment has values of two sites ({first}, {second}). Accepted: {accepted}.",
-    "hl7.message_too_long": "The message is too long. Accepted: at most {accepted} bytes.",
-    "hl7.no_message": "The file holds no HL7 v2 message. Accepted: {accepted}.",
-    "hl7.not_a_result": "The message {value} is not one of results. Accepted: {accepted}.",
-    "hl7.unreadable": "The message cannot be read ({detail}). Accepted: {accepted}.",
-    "patient.more_than_one": "The identifier {value} names more than one patient. Accepted: {accepted}.",
+        "Code {code} does not say whether a pulse oximeter or an analyser measured the saturation: it was left aside.",
+    "code.not_ours": "Code {code}[[ ({name})]] is no quantity of this log: it was left aside.",
+    "fhir.modifier": "The observation carries marks that change its meaning. Accepted: {accepted}.",
+    "fhir.no_resource": "This is no FHIR resource. Accepted: {accepted}.",
+    "fhir.other_resource": "{count} resource(s) of kind {kind} are no observations: they were left aside.",
+    "gas.two_sites": "{channel:name} was measured in a {second} sample, others of that moment in a {first} one. "
+        "Accepted: {accepted}.",
+    "hl7.message_too_long": "A message has no end within {accepted} bytes.",
+    "hl7.no_message": "This is no HL7 v2 message. Accepted: {accepted}.",
+    "hl7.not_a_result": "A message of kind '{value}' holds no results. Accepted: {accepted}.",
+    "hl7.unreadable": "The message cannot be cut into segments ({detail}). Accepted: {accepted}.",
+    "json.double_key": "A key stands twice in one object. Accepted: {accepted}.",
+    "json.no_number": "This is no number of JSON. Accepted: {accepted}.",
+    "json.too_deep": "The JSON is nested too deep to be a resource. Accepted: {accepted}.",
+    "json.unreadable": "The JSON cannot be read: {detail}. Accepted: {accepted}.",
+    "patient.more_than_one":
+        "The file holds more than one patient[[ ({value})]]: one episode cannot stand for all. Accepted: {accepted}.",
     "patient.no_identifier": "The result names no patient. Accepted: {accepted}.",
     "patient.not_a_patient": "The subject is of kind {value}. Accepted: {accepted}.",
-    "patient.several_episodes": "The patient {value} has several episodes: {episodes}. Accepted: {accepted}.",
-    "patient.unknown": "No episode belongs to the patient {value}. Accepted: {accepted}.",
-    "result.no_value": "The result[[ of {channel:name}]] has no value[[: {why}]].",
-    "result.not_yet": "The result[[ of {channel:name}]] is not there yet.",
-    "result.nothing_to_withdraw": "The result[[ of {channel:name}]] was withdrawn, but nothing of it is kept here.",
-    "result.preliminary": "The result[[ of {channel:name}]] is preliminary.",
-    "result.status_unknown": "The status '{value}' is not known. Accepted: {accepted}.",
-    "sampled.unreadable": "The sampled values of {channel:name} cannot be read. Accepted: {accepted}.",
-    "time.date_only": "'{value}' is a date without a time. Accepted: {accepted}.",
-    "time.needs_zone": "The time '{value}' needs its zone. Accepted: {accepted}.",
-    "time.none": "The result has no time. Accepted: {accepted}.",
+    "patient.several_episodes":
+        "The patient {value} has several episodes here: {episodes}. Accepted: {accepted}.",
+    "patient.unknown": "It is not known which episode the patient {value} belongs to. Accepted: {accepted}.",
+    "result.no_value": "{channel:name} was sent without a value[[ ({why})]]: it was left aside.",
+    "result.not_yet": "[[{channel:name}: ]]the result is not there yet: it was left aside.",
+    "result.nothing_to_withdraw":
+        "{channel:name} was called back (status {status}), but it had not been taken in: nothing to withdraw.",
+    "result.preliminary": "[[{channel:name}: ]]the result is preliminary; a final one may differ.",
+    "result.status_unknown": "'{value}' is no status of a result. Accepted: {accepted}.",
+    "sampled.unreadable": "The sampled data of {channel:name} are not of the form that is read. Accepted: {accepted}.",
+    "time.date_only": "'{value}' is a date without a time of day. Accepted: {accepted}.",
+    "time.needs_zone": "The time '{value}' has no offset, and no time zone was named. Accepted: {accepted}.",
+    "time.none": "No time of observation is given. Accepted: {accepted}.",
     "time.not_a_moment": "'{value}' is no moment. Accepted: {accepted}.",
-    "time.of_panel": "The time is that of the whole panel.",
-    "time.start_of_span": "The time is the start of a span ({start} to {end}).",
-    "unit.missing": "{channel:name}[[ {value}]] has no unit. Accepted: {accepted}.",
-    "value.comparator": "{channel:name} '{value}' is a bound and no number. Accepted: {accepted}.",
-}
+    "time.of_panel": "It has no time of its own: that of its panel was taken.",
+    "time.start_of_span": "It was observed from {start} to {end}: the start was taken.",
+    "unit.missing": "{channel:name} {value} has no unit. Accepted: {accepted}.",
+    "value.comparator": "{channel:name} {value} is a limit and no value. Accepted: {accepted}.",
+}  # fmt: skip
+
+TEMPLATES: Final[dict[str, str]] = RESULTS

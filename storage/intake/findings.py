@@ -42,6 +42,8 @@ class Intake:
 
     `whole` is False where reading had to stop before the end of the file, so that nothing of it can be taken.
     `repeated_in_store` counts rows that the store already has; they are skipped.
+    `aside` lists what is readable and not for this record, with the reason: codes that are no channel, results
+    that were cancelled. `aside_count` counts them all.
     """
 
     source: SourceFacts
@@ -52,6 +54,9 @@ class Intake:
     repeated_in_store: int = 0
     doubts: tuple[Doubt, ...] = ()
     whole: bool = True
+    aside: tuple[Refusal, ...] = ()
+    aside_count: int = 0
+    unknown_patients: tuple[str, ...] = ()
 
     @property
     def sample_count(self) -> int:

@@ -10,14 +10,14 @@ import numpy as np
 
 from core.record.instant import Instant
 from core.record.message import Message
-from storage.draft_batch import DraftChunk, SourceFacts
+from storage.draft_batch import SourceFacts
 from storage.intake.columns import ACCEPTED, Columns, read_header
 from storage.intake.device_rows import DeviceRows
-from storage.intake.entry_rows import EntryRows
 from storage.intake.findings import CLOCK_LEAD, Findings, Intake, UnreadableFileError, unreadable
-from storage.intake.held_samples import held_samples
+from storage.intake.judged import judged_intake
 from storage.intake.row_reading import EntryRow, RowReader
 from storage.intake.sample_spool import SampleSpool
+from storage.intake.steady_file import SteadyFile
 from storage.intake.text_blocks import BlockReader, TextBlock
 from storage.store import Store
 
@@ -55,12 +55,14 @@ class _Reading:
 
     def run(self) -> bool:
         """Read to the end; False where reading had to stop, with the reason among the refusals."""
+        steady = SteadyFile.begin(self._path)
         try:
             blocks = iter(self._reader)
             columns, rest = _after_header(next(blocks, None))
             fast = DeviceRows(columns, self._spool, self._now + CLOCK_LEAD)
             for block in _chained(rest, blocks):
                 self._take(block, columns, fast)
+            steady.check()
         except UnreadableFileError as error:
             self._findings.refuse(error.line, "", error.value, error.message)
             return False
@@ -120,31 +122,7 @@ class _Reading:
             self._reader.size,
             {k: v for k, v in units.items() if v},
         )
-        judged = EntryRows(self._entries, self._spool.leak_uses, existing, self._findings)
-        entries = judged.judged()
-        chunks, known = self._new_chunks(source.id, existing)
-        for again in self._spool.repeated:
-            message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
-            self._findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
-        f = self._findings
-        refusals = tuple(sorted(f.refusals, key=lambda r: r.line))
-        doubts = tuple(sorted(f.doubts, key=lambda d: d.line))
-        return Intake(
-            source, entries, chunks, refusals, f.refused_rows, judged.repeated + known, doubts, whole
-        )
-
-    def _new_chunks(self, source_id: str, existing: Store | None) -> tuple[tuple[DraftChunk, ...], int]:
-        """The hours of samples that the store does not have just so, and how many samples it has."""
-        fresh: list[DraftChunk] = []
-        known = 0
-        for key in self._spool.kinds():
-            held = None if existing is None else held_samples(existing, *key)
-            for block in self._spool.blocks(key):
-                if held is not None and held.has(block):
-                    known += block.n
-                else:
-                    fresh.append(DraftChunk(*key, source_id, block))
-        return tuple(fresh), known
+        return judged_intake(source, self._entries, self._spool, self._findings, existing, whole=whole)
 
 
 def _after_header(block: TextBlock | None) -> tuple[Columns, TextBlock | None]:

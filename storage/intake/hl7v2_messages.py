@@ -1,0 +1,124 @@
+"""Cuts a file of HL7 v2 messages into single ones: CR, LF or CRLF between segments, batch and transport marks
+between messages, in bounded memory."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from hashlib import sha256
+from pathlib import Path
+
+from core.record.message import refuse
+from storage.intake.findings import unreadable
+from storage.intake.steady_file import SteadyFile
+
+BLOCK = 1 << 20
+MAX_SEGMENT = 128 * 1024
+MAX_MESSAGE = 4 << 20
+_SKIPPED = (b"FHS", b"BHS", b"BTS", b"FTS")
+_ENCODINGS = {"": "utf-8", "ASCII": "utf-8", "UNICODE UTF-8": "utf-8", "UTF-8": "utf-8", "8859/1": "latin-1",
+              "8859/2": "iso8859-2", "8859/15": "iso8859-15", "UNICODE": "utf-8"}  # fmt: skip
+_CHARACTER_SET = 17
+
+
+@dataclass(frozen=True, slots=True)
+class RawMessage:
+    """One message: its segments joined by CR, and the line of the file where it begins (1 is the first)."""
+
+    text: str
+    line: int
+
+
+class MessageReader:
+    """Iterates over the messages of a file, hashing as it goes.
+
+    Raises:
+        UnreadableFileError: no HL7, a segment or message without end, an encoding that is not what it says,
+            a file that changed.
+        RecordError: `intake.cancelled`.
+    """
+
+    def __init__(
+        self, path: Path, progress: Callable[[int, int], None] | None = None,
+        cancelled: Callable[[], bool] | None = None,
+    ) -> None:  # fmt: skip
+        self._path, self._progress, self._cancelled = path, progress, cancelled
+        self._hash = sha256()
+        self.size = 0
+
+    @property
+    def sha(self) -> str:
+        """SHA-256 of what was read so far, as hex."""
+        return self._hash.hexdigest()
+
+    def __iter__(self) -> Iterator[RawMessage]:
+        steady = SteadyFile.begin(self._path)
+        held: list[bytes] = []
+        held_size = first = 0
+        for line, segment in self._segments(steady.size):
+            if segment.startswith(b"MSH"):
+                if held:
+                    yield _message(held, first)
+                held, held_size, first = [], 0, line
+            elif segment[:3] in _SKIPPED:
+                continue
+            elif not first:
+                shown = segment[:40].decode("utf-8", "replace")
+                raise unreadable(line, shown, "hl7.no_message", accepted="a message that begins with MSH")
+            held.append(segment)
+            held_size += len(segment)
+            if held_size > MAX_MESSAGE:
+                raise unreadable(first, "MSH", "hl7.message_too_long", accepted=MAX_MESSAGE)
+        if not held:
+            raise unreadable(1, "", "hl7.no_message", accepted="a message that begins with MSH")
+        yield _message(held, first)
+        steady.check()
+
+    def _segments(self, total: int) -> Iterator[tuple[int, bytes]]:
+        """Segments with their line; marks of the transport (VT, FS) and empty lines are left out."""
+        carried, line = b"", 0
+        with self._path.open("rb") as file:
+            while True:
+                if self._cancelled is not None and self._cancelled():
+                    raise refuse("intake.cancelled", path=self._path.name)
+                fresh = file.read(BLOCK)
+                self._hash.update(fresh)
+                self.size += len(fresh)
+                if self._progress is not None:
+                    self._progress(self.size, total)
+                data = carried + fresh
+                if fresh and data.endswith(b"\r"):  # its LF may come with the next block
+                    data, tail = data[:-1], b"\r"
+                else:
+                    tail = b""
+                parts = data.replace(b"\r\n", b"\n").replace(b"\r", b"\n").split(b"\n")
+                carried = (parts.pop() if fresh else b"") + tail
+                if max(map(len, (*parts, carried))) > MAX_SEGMENT:
+                    raise unreadable(line + 1, "", "line.too_long", accepted=f"{MAX_SEGMENT} bytes")
+                for part in parts:
+                    line += 1
+                    plain = part.strip(b"\x0b\x1c \t\xef\xbb\xbf") if line == 1 else part.strip(b"\x0b\x1c \t")
+                    if plain:
+                        yield line, plain
+                if not fresh:
+                    return
+
+
+def _message(segments: list[bytes], line: int) -> RawMessage:
+    data = b"\r".join(segments)
+    if data.isascii():
+        if b"\x00" in data:
+            raise unreadable(line, "NUL", "file.binary", accepted="text")
+        return RawMessage(data.decode("ascii"), line)
+    fields = segments[0].split(segments[0][3:4])
+    claimed = fields[_CHARACTER_SET].decode("ascii", "replace") if len(fields) > _CHARACTER_SET else ""
+    encoding = _ENCODINGS.get(claimed.split("~")[0].strip().upper())
+    if encoding is None:
+        raise unreadable(line, claimed[:40], "file.encoding", found=claimed[:40] or "not named",
+                         accepted=", ".join(k for k in _ENCODINGS if k))  # fmt: skip
+    try:
+        return RawMessage(data.decode(encoding), line)
+    except UnicodeDecodeError as error:
+        shown = f"byte {data[error.start : error.start + 1].hex()}"
+        raise unreadable(line, shown, "file.encoding", found=f"not {encoding}",
+                         accepted="a message in the character set that MSH-18 names") from None  # fmt: skip
