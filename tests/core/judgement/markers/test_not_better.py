@@ -1,0 +1,179 @@
+"""Not better: a pH gain of at most 0.033 with pH below 7.35, 45-135 min after the start or the change.
+
+Sources: BTS 2002, Thorax 57:192 (no better at 1-2 h; no gain after 4-6 h, from memory); Confalonieri, ERJ 2005;25:348;
+noise of pH: Thorson, Chest 1983;84:14. Too little support: BTS/ICS 2016 (from memory). Late failure: Ozyilmaz, BMC
+Pulm Med 2014;14:19. What counts as settling is common practice, no source.
+"""
+
+import pytest
+
+from tests.support.flag_cases import BEFORE, COPD, LUNG, START, flags, met, told
+
+KINDS = ("ph_not_better_severe", "ph_not_better", "ph_not_better_settling")
+BASE = COPD + BEFORE + START
+
+
+def kinds(log, as_of="12:00"):
+    return {k: m for k in KINDS if (m := met(k, log, as_of))}
+
+
+@pytest.mark.parametrize(
+    ("gas", "expected"),
+    [
+        ("02:00 ph 7.31 paco2 70", {"ph_not_better": "02:00-"}),
+        ("02:00 ph 7.313 paco2 70", {"ph_not_better": "02:00-"}),  # 0.033 exactly is inside noise
+        ("02:00 ph 7.314 paco2 70", {}),
+        ("02:00 ph 7.28 paco2 70", {"ph_not_better": "02:00-"}),
+        ("02:00 ph 7.25 paco2 70", {"ph_not_better": "02:00-"}),
+        ("02:00 ph 7.249 paco2 70", {"ph_not_better_severe": "02:00-"}),
+        ("01:44 ph 7.28 paco2 70", {}),  # 44 min
+        ("01:45 ph 7.28 paco2 70", {"ph_not_better": "01:45-"}),
+        ("03:15 ph 7.28 paco2 70", {"ph_not_better": "03:15-"}),  # 135 min
+        ("03:16 ph 7.28 paco2 70", {}),
+        ("02:00 ph 7.28 paco2 70 site venous", {}),
+        ("01:50 mask_off\n02:00 ph 7.28 paco2 70", {}),  # off support judges nothing
+        ("02:00 paco2 70", {}),
+    ],
+)
+def test_not_better_at_its_edges(gas, expected):
+    assert kinds(BASE + gas) == expected
+
+
+def test_without_a_baseline_nothing_is_said_of_better():
+    assert kinds(COPD + START + "02:00 ph 7.28 paco2 70") == {}
+
+
+@pytest.mark.parametrize(
+    ("seen", "kind"),
+    [
+        ("paco2 66 rr 23 gcs 15", "ph_not_better_settling"),
+        ("paco2 66 rr 24 gcs 15", "ph_not_better"),  # down by 6: inside the noise of two counts
+        ("paco2 70 rr 23 gcs 15", "ph_not_better"),  # PaCO2 not lower
+        ("paco2 66 rr 23 gcs 14", "ph_not_better"),  # GCS lower
+        ("paco2 66 rr 11 gcs 15", "ph_not_better"),  # slow: not settling
+        ("paco2 66 rr 12 gcs 15", "ph_not_better_settling"),
+        ("rr 23 gcs 15", "ph_not_better"),  # PaCO2 not known
+    ],
+)
+def test_a_remark_only_when_rate_gcs_and_paco2_all_say_settling(seen, kind):
+    assert list(kinds(BASE + f"02:00 ph 7.30 {seen}")) == [kind]
+
+
+def test_what_is_not_known_keeps_it_a_concern():
+    without_gcs = COPD + BEFORE.replace(" gcs 15", "") + START + "02:00 ph 7.30 paco2 66 rr 23"
+    assert list(kinds(without_gcs)) == ["ph_not_better"]
+    assert told("ph_not_better", without_gcs)["evidence.unknown"].values["quantity"] == "gcs"
+    stale_rate = BASE + "01:20 rr 20\n02:00 ph 7.30 paco2 66 gcs 15"  # the rate is 40 min old
+    assert list(kinds(stale_rate)) == ["ph_not_better"]
+
+
+@pytest.mark.parametrize(
+    ("later", "expected"),
+    [
+        ("05:00 ph 7.31 paco2 66", "02:00-"),  # still not better: outside the hours that judge it ends nothing
+        ("05:00 ph 7.32 paco2 66", "02:00-05:00"),  # beyond noise of the baseline
+        ("05:00 ph 7.35 paco2 60", "02:00-05:00"),
+        ("05:00 ph 7.35 paco2 60 site venous", "02:00-"),
+    ],
+)
+def test_it_ends_when_a_later_gas_is_better(later, expected):
+    assert met("ph_not_better", BASE + "02:00 ph 7.28 paco2 70\n" + later) == expected
+
+
+def test_a_worse_gas_turns_the_concern_into_an_escalation():
+    log = BASE + "02:00 ph 7.28 paco2 70\n03:00 ph 7.24 paco2 76"
+    assert kinds(log) == {"ph_not_better": "02:00-03:00", "ph_not_better_severe": "03:00-"}
+
+
+def test_judged_against_the_start_where_a_change_has_no_baseline_of_its_own():
+    changed = BASE + "01:30 ipap 24\n02:40 ph 7.28 paco2 70"  # the gas before the start was on other support
+    said = told("ph_not_better", changed)["evidence.timing"].values
+    assert (said["anchor"], said["minutes"]) == ("start", 100)
+
+
+def test_judged_against_a_change_though_better_than_at_the_start():
+    gained = BASE + "02:00 ph 7.32 paco2 64\n05:00 ipap 24\n06:00 ph 7.33 paco2 63"
+    assert met("ph_not_better", gained) == "06:00-"
+    said = told("ph_not_better", gained)["evidence.timing"].values
+    assert (said["anchor"], said["minutes"]) == ("change", 60)
+
+
+@pytest.mark.parametrize(
+    ("gas", "expected"),
+    [("02:00 ph 7.30 paco2 70", ""), ("02:00 ph 7.299 paco2 70", "02:00-"), ("04:00 ph 7.28 paco2 70", "")],
+)
+def test_higher_level_of_care_below_730(gas, expected):
+    assert met("hdu_criterion", BASE + gas) == expected
+
+
+@pytest.mark.parametrize(
+    ("log", "expected"),
+    [
+        ("05:00 ph 7.31 paco2 68", "05:00-"),
+        ("04:59 ph 7.31 paco2 68", ""),  # just short of 4 h
+        ("05:00 ph 7.32 paco2 68", ""),  # pH better
+        ("05:00 ph 7.30 paco2 64", ""),  # PaCO2 down by 6: beyond the noise of 5.6
+        ("05:00 ph 7.30 paco2 64.4", "05:00-"),  # down by 5.6 exactly: inside noise
+        ("05:00 ph 7.35 paco2 68", ""),
+        ("02:00 mask_off\n03:00 mask_on\n05:00 ph 7.31 paco2 68", ""),  # an hour off the mask does not count
+        ("04:00 ipap 18\n05:00 ph 7.31 paco2 68", ""),  # too little support is not optimised
+        ("04:00 ipap 18 support_reason 'not tolerated'\n05:00 ph 7.31 paco2 68", "05:00-"),
+    ],
+)
+def test_no_gain_after_hours_of_support_that_is_not_too_little(log, expected):
+    assert met("no_gain_after_hours", BASE + log) == expected
+
+
+SMALL = COPD + BEFORE + START.replace("ipap 20", "ipap 19")
+
+
+@pytest.mark.parametrize(
+    ("log", "expected"),
+    [
+        (SMALL + "02:00 ph 7.34 paco2 60", "02:00-"),
+        (SMALL + "02:00 ph 7.35 paco2 60", ""),
+        (SMALL + "01:44 ph 7.30 paco2 60", ""),  # before 1 h
+        (SMALL + "02:00 ph 7.30 paco2 60\n02:30 ipap 20", "02:00-02:30"),
+        (SMALL + "02:00 ph 7.30 paco2 60\n02:30 support_reason titrating", "02:00-02:30"),
+        (SMALL + "02:00 ph 7.30 paco2 45", ""),  # not hypercapnic: 45 mmHg is 6.0 kPa
+        (SMALL + "02:00 ph 7.30 paco2 6.1kPa", "02:00-"),
+        (SMALL.replace("copd", "pneumonia") + "02:00 ph 7.30 paco2 60", ""),
+        (BASE + "02:00 ph 7.30 paco2 60", ""),  # IPAP 20
+        (COPD + BEFORE + "01:00 mode CPAP cpap 8 fio2 30\n02:00 ph 7.30 paco2 60", "02:00-"),
+    ],
+)
+def test_too_little_support_in_hypercapnic_copd(log, expected):
+    assert met("too_little_support", log) == expected
+
+
+def test_a_gain_that_was_lost_again():
+    log = BASE + "02:00 ph 7.36 paco2 55\n05:00 ph 7.30 paco2 62\n07:00 ph 7.35 paco2 56"
+    assert met("gain_lost", log) == "05:00-07:00"
+    assert met("gain_lost", BASE + "02:00 ph 7.36 paco2 55\n05:00 ph 7.33 paco2 56") == ""  # inside noise
+
+
+def test_a_lost_gain_of_oxygen_is_its_own():
+    base = LUNG + "00:30 ph 7.42 paco2 36 pao2 60 site arterial\n" + START.replace("fio2 30", "fio2 40")
+    log = base + "00:40 ph 7.42 paco2 36 pao2 60 site arterial gas_fio2 40\n02:00 ph 7.42 paco2 36 pao2 100 site arterial\n"
+    assert met("oxygen_gain_lost", log + "05:00 ph 7.42 paco2 36 pao2 62 site arterial") == "05:00-"
+    assert met("gain_lost", log + "05:00 ph 7.42 paco2 36 pao2 62 site arterial") == ""
+
+
+@pytest.mark.parametrize(
+    ("log", "expected"),
+    [
+        ("02:00 ph 7.36 paco2 55\nd2 03:00 ph 7.30 paco2 62", "d2 03:00-"),  # 49 h
+        ("02:00 ph 7.36 paco2 55\nd2 02:00 ph 7.30 paco2 62", ""),  # 48 h exactly is not more
+        ("02:00 ph 7.36 paco2 55\nd1 02:00 ph 7.30 paco2 62\nd2 06:00 ph 7.30 paco2 60", ""),
+        ("02:00 ph 7.30 paco2 55\nd2 06:00 ph 7.30 paco2 60", ""),  # never a success
+        ("02:00 ph 7.36 paco2 55\nd2 03:00 ph 7.30 paco2 62\nd2 05:00 ph 7.36 paco2 55", "d2 03:00-d2 05:00"),
+    ],
+)
+def test_late_failure_after_48_hours_of_success(log, expected):
+    assert met("late_failure", BASE + log, "d4 00:00") == expected
+
+
+def test_tiers_follow_the_rules():
+    tiers = {f.marker: f.tier for f in flags(BASE + "02:00 ph 7.24 paco2 76")}
+    assert tiers["ph_not_better_severe"] == "escalate"
+    assert tiers["ph_below_severe"] == "concern"
