@@ -54,6 +54,7 @@ class CompareView(QWidget):
         scroll = QScrollArea()
         scroll.setWidgetResizable(True)
         scroll.setFrameShape(QFrame.Shape.NoFrame)
+        scroll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
         scroll.setWidget(self.chart)
         left = QVBoxLayout()
         left.addWidget(self.list, 1)

@@ -169,10 +169,10 @@ class WardView(QWidget):
 
     def select(self, key: str) -> None:
         """Take an episode in hand, where its lane is shown."""
-        if key in self.keys():
+        if key in self.shown_keys():
             self.lanes.select(key)
 
-    def keys(self) -> tuple[str, ...]:
+    def shown_keys(self) -> tuple[str, ...]:
         """The episodes shown, from top to bottom."""
         return () if self.lanes.spec is None else tuple(lane.key for lane in self.lanes.spec.lanes)
 

@@ -301,8 +301,8 @@ class MainWindow(QMainWindow):
     def _ward_refreshed(self, content: WardContent) -> None:
         o = self._now_open()
         o.pages.ward.show_ward(content)
-        if o.model.session.selection is None and o.pages.ward.keys():
-            o.model.select(o.pages.ward.keys()[0])
+        if o.model.session.selection is None and o.pages.ward.shown_keys():
+            o.model.select(o.pages.ward.shown_keys()[0])
         else:
             self._selection_changed()
         if o.pages.name == "compare":

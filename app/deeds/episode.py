@@ -24,7 +24,7 @@ class EpisodeDeeds(Doer):
         self._step(-1)
 
     def _step(self, by: int) -> None:
-        keys = self.pages.ward.keys()
+        keys = self.pages.ward.shown_keys()
         key = self.model.session.selection
         if key in keys:
             self.model.select(keys[(keys.index(key) + by) % len(keys)])

@@ -51,11 +51,7 @@ class Readout(QFrame):
     ) -> None:
         """Say what stood at a moment; `pointed`: the crosshair is there, else it is now."""
         head = wall(at, zone) if pointed else self.tr("Now, {time}").format(time=wall(at, zone))
-        settings = (
-            settings_line(stretch.settings)
-            if stretch is not None
-            else self.tr("no settings in force")
-        )
+        settings = settings_line(stretch.settings) if stretch is not None else self.tr("no settings in force")
         age = ""
         if stretch is not None:
             age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))

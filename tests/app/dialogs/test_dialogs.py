@@ -1,0 +1,297 @@
+"""Dialogs in real use: a file with bad rows, a correction and its undo, a new episode, panels, lists, tables."""
+
+import pytest
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QApplication
+
+from app.dialogs.action_finder import ActionFinder
+from app.dialogs.correct import Act, CorrectDialog
+from app.dialogs.intake import IntakeDialog
+from app.dialogs.new_episode import NewEpisodeDialog
+from app.dialogs.panel_editor import PanelEditor
+from app.dialogs.sign_in import SignInDialog
+from app.dialogs.table import TableDialog
+from app.theme import LIGHT
+from tests.support.open_window import make_store, open_window, settled, until
+
+HEAD = "episode,at,channel,value,unit,by,note\n"
+GOOD = "bed-9,2026-03-28T01:00:00+00:00,label,Bed 9,,AB,\nbed-9,2026-03-28T02:00:00+00:00,rr,24,/min,AB,\n"
+BAD = "bed-9,2026-03-28T02:00:00+00:00,ipap,99,cmH2O,AB,\n"
+DOUBT = "bed-9,2026-03-28T02:30:00+00:00,spo2,60,%,AB,\n"
+
+
+@pytest.fixture
+def window(qtbot, tmp_path):
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
+        yield made
+
+
+def write(folder, text):
+    path = folder / "night.csv"
+    path.write_text(HEAD + text, "utf-8")
+    return path
+
+
+def dialog_of(window, kind):
+    return next(d for d in window.findChildren(kind) if d.isVisible())
+
+
+# taking in a file
+
+
+def test_a_clean_file_is_shown_and_then_taken(qtbot, window, tmp_path):
+    head = window.model.session.head
+    dialog = window.doers.file.take_in(write(tmp_path, GOOD + DOUBT))
+    until(qtbot, lambda: dialog.intake is not None)
+    assert "3 entries" in dialog.summary.text()
+    assert "1 rows are in doubt" in dialog.summary.text()
+    assert window.model.session.head == head
+    assert dialog.go.isEnabled()
+    dialog.go.click()
+    until(qtbot, lambda: "bed-9" in window.pages.ward.shown_keys())
+    assert not dialog.isVisible()
+
+
+def test_a_file_with_a_bad_row_is_refused_unless_it_is_left_out(qtbot, window, tmp_path):
+    dialog = window.doers.file.take_in(write(tmp_path, GOOD + BAD))
+    until(qtbot, lambda: dialog.intake is not None)
+    assert not dialog.go.isEnabled()
+    row = [dialog.table.item(0, c).text() for c in range(4)]
+    assert row[0] == "4"
+    assert "refused" in row[1]
+    assert row[2].startswith("99")
+    assert "IPAP" in row[3]
+    dialog.leave_out.click()
+    assert dialog.go.isEnabled()
+    dialog.go.click()
+    until(qtbot, lambda: "bed-9" in window.pages.ward.shown_keys())
+
+
+def test_leaving_takes_nothing(qtbot, window, tmp_path):
+    head = window.model.session.head
+    dialog = window.doers.file.take_in(write(tmp_path, GOOD))
+    dialog.reject()
+    settled(qtbot, window)
+    window.model.look_for_changes()
+    settled(qtbot, window)
+    assert window.model.session.head == head
+
+
+def test_a_file_that_is_not_there_says_so(qtbot, window, tmp_path):
+    dialog = IntakeDialog(window.model, tmp_path / "none.csv", window.reader, LIGHT, window)
+    dialog.open()
+    until(qtbot, lambda: bool(dialog.wrong.text()))
+    assert "none.csv" in dialog.wrong.text()
+    assert not dialog.go.isEnabled()
+    dialog.reject()
+
+
+def test_a_file_twice_is_nothing_new(qtbot, window, tmp_path):
+    path = write(tmp_path, GOOD)
+    first = window.doers.file.take_in(path)
+    until(qtbot, lambda: first.intake is not None)
+    first.go.click()
+    until(qtbot, lambda: "bed-9" in window.pages.ward.shown_keys())
+    second = window.doers.file.take_in(path)
+    until(qtbot, lambda: second.intake is not None)
+    assert "in the store already" in second.summary.text()
+    assert not second.go.isEnabled()
+    second.reject()
+
+
+# correcting
+
+
+def open_correct(qtbot, window):
+    window.select("bed-7")
+    window.actions_by_key["correct"].trigger()
+    return dialog_of(window, CorrectDialog)
+
+
+def choose(dialog, channel, value):
+    for n in range(dialog.list.topLevelItemCount()):
+        item = dialog.list.topLevelItem(n)
+        if item.text(1) == channel and item.text(2).startswith(value):
+            dialog.list.setCurrentItem(item)
+            return
+    raise AssertionError(f"{channel} {value} is not in the list")
+
+
+def ph_of(window, at=-1):
+    return float(window.feed.answers["bed-7"].record.number("ph").v[at])
+
+
+def test_a_value_is_corrected_with_a_reason_shown_so_and_undone(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "pH", "7.24")
+    dialog.value.setText("7.34")
+    dialog.go.click()
+    assert "reason" in dialog.wrong.text()
+    dialog.reason.setText("read wrong")
+    dialog.go.click()
+    until(qtbot, lambda: ph_of(window) == 7.34)
+    assert not dialog.isVisible()
+    lane = next(x for x in window.pages.ward.lanes.spec.lanes if x.key == "bed-7")
+    assert any("corrected" in i.sentence for i in lane.items)
+    window.actions_by_key["undo"].trigger()
+    until(qtbot, lambda: ph_of(window) == 7.24)
+
+
+def test_a_value_is_withdrawn(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "pH", "7.24")
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.WITHDRAW))
+    assert not dialog.value.isEnabled()
+    dialog.reason.setText("another patient's")
+    dialog.go.click()
+    until(qtbot, lambda: ph_of(window) == 7.27)
+
+
+def test_a_value_moves_to_the_right_patient(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "Respiratory rate", "27")
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.MOVE))
+    assert dialog.to.currentData() == "bed-3"
+    dialog.reason.setText("wrong bed")
+    dialog.go.click()
+    until(qtbot, lambda: len(window.feed.answers["bed-3"].record.number("rr")) == 2)
+
+
+def test_a_wrong_value_is_refused_and_an_unusual_one_asked_about(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "pH", "7.24")
+    dialog.reason.setText("x")
+    dialog.value.setText("9.9")
+    dialog.go.click()
+    until(qtbot, lambda: "9.9" in dialog.wrong.text())
+    dialog.value.setText("6.95")
+    dialog.go.click()
+    until(qtbot, lambda: "again says yes" in dialog.wrong.text())
+    dialog.go.click()
+    until(qtbot, lambda: ph_of(window) == 6.95)
+
+
+# a new episode
+
+
+def test_an_episode_begins_with_its_target_suggested_from_risk(qtbot, window):
+    window.actions_by_key["new_episode"].trigger()
+    dialog = dialog_of(window, NewEpisodeDialog)
+    assert dialog.target_low.placeholderText().startswith("94")
+    dialog.indication.setCurrentIndex(dialog.indication.findData("copd"))
+    assert dialog.target_low.placeholderText().startswith("88")
+    dialog.go.click()
+    assert "bed or a label" in dialog.wrong.text()
+    dialog.label.setText("Bed 11")
+    dialog.age.setText("abc")
+    dialog.go.click()
+    until(qtbot, lambda: "abc" in dialog.wrong.text())
+    dialog.age.setText("70")
+    dialog.go.click()
+    until(qtbot, lambda: window.strip.whom.text() == "Bed 11")
+    record = window.feed.answers[window.model.session.selection].record
+    assert record.latest("age") == 70
+    assert record.latest_text("indication") == "copd"
+
+
+# panels
+
+
+def test_panels_are_made_kept_and_reset(qtbot, window):
+    window.open_episode("bed-7")
+    stack = window.pages.episode.stack
+    window.actions_by_key["panels"].trigger()
+    editor = dialog_of(window, PanelEditor)
+    editor.add()
+    editor.name.setText("Circulation")
+    editor.name.editingFinished.emit()
+    tick(editor, "hr", True)
+    assert "units" not in editor.wrong.text()
+    editor.up()
+    editor.keep()
+    until(qtbot, lambda: "Circulation" in [p.title for p in stack.spec.panels])
+    assert [p.title for p in stack.spec.panels][2] == "Circulation"
+    window.actions_by_key["panels"].trigger()
+    editor = dialog_of(window, PanelEditor)
+    editor.reset()
+    editor.keep()
+    until(qtbot, lambda: "Circulation" not in [p.title for p in stack.spec.panels])
+
+
+def tick(editor, channel, on):
+    for n in range(editor.channels.count()):
+        item = editor.channels.item(n)
+        if item.data(Qt.ItemDataRole.UserRole) == channel:
+            item.setCheckState(Qt.CheckState.Checked if on else Qt.CheckState.Unchecked)
+            return
+    raise AssertionError(channel)
+
+
+def test_a_third_unit_is_refused_and_undo_goes_back(qtbot, window):
+    window.open_episode("bed-7")
+    window.actions_by_key["panels"].trigger()
+    editor = dialog_of(window, PanelEditor)
+    before = editor.panels
+    tick(editor, "spo2", True)
+    assert editor.wrong.text()
+    assert editor.panels == before
+    editor.duplicate()
+    editor.remove()
+    editor.undo()
+    editor.undo()
+    assert editor.panels == before
+    editor.reject()
+
+
+# lists, tables, person
+
+
+def test_the_list_of_actions_finds_and_does(qtbot, window):
+    finder = ActionFinder(window.actions_by_key, LIGHT, window)
+    qtbot.addWidget(finder)
+    finder.show()
+    qtbot.keyClicks(finder.search, "compare")
+    qtbot.keyClick(finder.search, Qt.Key.Key_Return)
+    assert finder.chosen is window.actions_by_key["show_compare"]
+
+
+@pytest.mark.parametrize("page", ["ward", "episode", "compare"])
+def test_every_chart_is_a_table_that_can_be_copied(qtbot, window, page):
+    window.select("bed-7")
+    window.show_page(page)
+    settled(qtbot, window)
+    window.actions_by_key["table"].trigger()
+    dialog = dialog_of(window, TableDialog)
+    assert dialog.table.rowCount() > 0
+    dialog.copy.click()
+    lines = QApplication.clipboard().text().splitlines()
+    assert len(lines) == dialog.table.rowCount() + 1
+    assert all(line.count("\t") == lines[0].count("\t") for line in lines)
+    dialog.copy_words.click()
+    assert "Bed 7" in QApplication.clipboard().text()
+    dialog.close()
+
+
+def test_signing_in_takes_initials(qtbot):
+    dialog = SignInDialog("AB", LIGHT)
+    qtbot.addWidget(dialog)
+    dialog.initials.clear()
+    dialog.go.click()
+    assert dialog.result() == 0
+    assert dialog.wrong.text()
+    qtbot.keyClicks(dialog.initials, "xy")
+    dialog.go.click()
+    assert dialog.person == "XY"
+    assert dialog.result() == 1
+
+
+def test_help_and_about_open_and_close(qtbot, window):
+    from app.about import AboutDialog
+    from app.help_dialog import HelpDialog
+
+    qtbot.keyClick(window, Qt.Key.Key_F1)
+    dialog = dialog_of(window, HelpDialog)
+    assert "16/6 35" in dialog.text.toPlainText()
+    dialog.close()
+    window.actions_by_key["about"].trigger()
+    dialog_of(window, AboutDialog).close()
