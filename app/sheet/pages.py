@@ -63,15 +63,17 @@ def fit_episode(page: EpisodePage, press: Press, room: Room) -> Fitted:
 
     An open flag is never left out.
     """
-    reduced: EpisodePage | None = page
-    least = page
-    while reduced is not None:
-        for scale in SCALES:
-            fitted = _at_scale(reduced, press.at_scale(scale), room)
-            if fitted is not None:
-                return fitted
-        least, reduced = reduced, _fewer(reduced)
-    return _on_two_pages(least, press.at_scale(SCALES[-1]), room)
+    for scale in SCALES:
+        fitted = _at_scale(page, press.at_scale(scale), room)
+        if fitted is not None:
+            return fitted
+    smallest = press.at_scale(SCALES[-1])
+    while (fewer := _fewer(page)) is not None:
+        page = fewer
+        fitted = _at_scale(page, smallest, room)
+        if fitted is not None:
+            return fitted
+    return _on_two_pages(page, smallest, room)
 
 
 def _at_scale(page: EpisodePage, press: Press, room: Room) -> Fitted | None:

@@ -51,6 +51,8 @@ class Press:
     dots_per_inch: int
     scale: float = 1.0
     _metrics: dict[Style, QFontMetricsF] = field(default_factory=dict)
+    _heights: dict[tuple[str, Style, float, Align], float] = field(default_factory=dict)
+    _scaled: dict[float, Press] = field(default_factory=dict)
 
     @property
     def unit(self) -> float:
@@ -62,11 +64,21 @@ class Press:
         return points * self.scale
 
     def at_scale(self, scale: float) -> Press:
-        """The same paper at another scale."""
-        return Press(self.painter, self.dots_per_inch, scale)
+        """The same paper at another scale. What was measured there before is remembered."""
+        if scale == self.scale:
+            return self
+        if scale not in self._scaled:
+            self._scaled[scale] = Press(self.painter, self.dots_per_inch, scale, _scaled=self._scaled)
+        return self._scaled[scale]
 
     def height(self, text: str, style: Style, width: float, align: Align = Align.LEFT) -> float:
         """How high a text is when set in a width."""
+        key = (text, style, width, align)
+        if key not in self._heights:
+            self._heights[key] = self._measured(text, style, width, align)
+        return self._heights[key]
+
+    def _measured(self, text: str, style: Style, width: float, align: Align) -> float:
         rect = QRectF(0, 0, width * self.unit, _TALL)
         found = self._metric(style).boundingRect(rect, self._flags(text, style, width, align), text or " ")
         return found.height() / self.unit
@@ -151,5 +163,6 @@ def _font(pixels: int, bold: bool) -> QFont:
     font.setPixelSize(max(1, pixels))
     font.setBold(bold)
     font.setFeature(QFont.Tag("tnum"), 1)
+    font.setFeature(QFont.Tag("liga"), 0)  # so that a search in the PDF finds "confirmed"
     font.setHintingPreference(QFont.HintingPreference.PreferNoHinting)
     return font

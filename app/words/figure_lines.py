@@ -176,7 +176,7 @@ class FigureLines:
     def verdict(self, r: ResponseFigure, *, brief: bool = False) -> str:
         """The headline with the gas it rests on, by how much, after how long; `brief` leaves out its state."""
         judged = next((g for g in r.gases if g.at == r.headline_gas_at), None)
-        if judged is None:
+        if judged is None or judged.verdict is None:
             why = " ".join(sentence(m, self.reader) for m in r.why)
             return f"{self.tr(r.headline)}. {why}".rstrip(". ") + "."
         text = f"{self.tr(r.headline)}: {self.deltas(judged, with_state=not brief)}"
