@@ -88,11 +88,15 @@ def vt_high_hypoxaemic(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     found = seen.once(volumes)
     usable = (found.codes == Trust.TRUSTED) | (found.codes == Trust.NOT_KNOWN)
     vte = found.vte.cut(usable)
-    quarters = medians(vte.t, vte.v / weight, int(seen.policy.trend.device_median_min.value * MINUTE))
-    high = quarters.v > rule.limits["ml_per_kg"]
+    span = int(seen.policy.trend.device_median_min.value * MINUTE)
+    quarters = medians(vte.t, vte.v / weight, span)
+    # a quarter that is not over has a median that still moves: it says nothing yet
+    high = (quarters.v > rule.limits["ml_per_kg"]) & ((quarters.bin + 1) * span <= seen.as_of)
     points = []
     for k in np.flatnonzero(high | np.concatenate(([False], high[:-1]))).tolist() if high.any() else ():
-        at = int(quarters.last[k])
+        at = int(quarters.bin[k] + 1) * span
+        if at > seen.as_of:
+            break
         if not high[k]:
             points.append(Point(at, False))
         elif k and high[k - 1] and quarters.bin[k] - quarters.bin[k - 1] == 1:
