@@ -64,6 +64,7 @@ class Database:
         self.read_only = mode in ("ro", "immutable")
         self._busy = busy
         self._write_lock = RLock()
+        self._file = _identity(path)
         self.engine = sa.create_engine(
             "sqlite://",
             module=dbapi2,
@@ -85,13 +86,16 @@ class Database:
         """A transaction that holds the write lock from its start; all of it is kept, or none.
 
         Raises:
-            StoreError: `store.busy` when another writer holds the lock beyond the busy timeout.
+            StoreError: `store.busy` when another writer holds the lock beyond the busy timeout;
+                `store.file_gone` when the file was moved or replaced, so that nobody would find the entry.
         """
         if self.read_only:
             raise store_error("store.read_only", path=self.path.name)
         if not self._write_lock.acquire(timeout=self._busy):
             raise store_error("store.busy", path=self.path.name, detail="another thread writes")
         try:
+            if _identity(self.path) != self._file:
+                raise store_error("store.file_gone", path=self.path.name)
             with self._translating(), self.engine.connect() as plain:
                 connection = plain.execution_options(luff_write=True)
                 with connection.begin():
@@ -107,12 +111,23 @@ class Database:
             raise
         except DBAPIError as error:
             raise translated(error.orig or error, self.path) from error
+        except UnicodeDecodeError as error:  # the driver's way to say that a stored text is no text
+            raise store_error("store.damaged", path=self.path.name, detail="text") from error
         except driver_errors() as error:
             raise translated(error, self.path) from error
 
     def close(self) -> None:
         """Close every connection; the last one out folds the journal into the file."""
         self.engine.dispose()
+
+
+def _identity(path: Path) -> tuple[int, int] | None:
+    """Which file lies at a path, or None."""
+    try:
+        facts = path.stat()
+    except OSError:
+        return None
+    return facts.st_dev, facts.st_ino
 
 
 def _begin(connection: sa.Connection) -> None:

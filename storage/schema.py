@@ -186,6 +186,7 @@ layout = Table(
     Column("name", Text, primary_key=True),
     Column("text", Text, nullable=False),
     Column("revision", Integer, nullable=False),
+    Column("sha", String(64), nullable=False),
 )  # fmt: skip
 
 draft = Table(
@@ -193,4 +194,5 @@ draft = Table(
     Column("name", Text, primary_key=True),
     Column("text", Text, nullable=False),
     Column("saved_at", BigInteger, nullable=False),
+    Column("sha", String(64), nullable=False),
 )  # fmt: skip

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import heapq
 from collections.abc import Iterator
+from functools import partial
 from hashlib import sha256
 from typing import Any
 
@@ -11,7 +12,7 @@ import sqlalchemy as sa
 
 from core.record.entries import Action, NewEntry
 from core.record.message import Message
-from storage import episode_index, rules
+from storage import episode_index, rules, settings_kept
 from storage import schema as s
 from storage.chain import GENESIS, batch_hash, row_digest, rows_digest
 from storage.chunks import decode
@@ -24,22 +25,32 @@ _Digest = tuple[int, int, str]  # sequence, batch, digest
 
 def findings(database: Database, *, encrypted: bool) -> tuple[Message, ...]:
     """Everything that is wrong with a store; empty when all is well. Never raises for damage: it reports it."""
+    checks = (partial(_pages, encrypted=encrypted), _triggers, _chain, _blobs, _entries, _kept, _derived)
     found: list[Message] = []
-    try:
-        with database.read() as connection:
-            found += [
-                Message("verify.pages", {"detail": text})
-                for text in integrity_findings(connection, encrypted=encrypted)
-            ]
-            for name, what in trigger_findings(connection):
-                found.append(Message("verify.trigger", {"name": name, "what": what}))
-            found += _chain(connection)
-            found += _blobs(connection)
-            found += _entries(connection)
-            found += _derived(connection)
-    except StoreError as error:
-        found.append(Message("verify.unreadable", dict(error.message.values)))
+    for check in checks:
+        try:
+            with database.read() as connection:
+                found += check(connection)
+        except StoreError as error:
+            found.append(Message("verify.unreadable", dict(error.message.values)))
+        except (TypeError, ValueError, KeyError, OverflowError) as error:  # a value of a kind never written
+            found.append(Message("verify.unreadable", {"detail": str(error)[:200]}))
     return tuple(found)
+
+
+def _pages(connection: sa.Connection, *, encrypted: bool) -> list[Message]:
+    texts = integrity_findings(connection, encrypted=encrypted)
+    return [Message("verify.pages", {"detail": text}) for text in texts]
+
+
+def _triggers(connection: sa.Connection) -> list[Message]:
+    found = trigger_findings(connection)
+    return [Message("verify.trigger", {"name": name, "what": what}) for name, what in found]
+
+
+def _kept(connection: sa.Connection) -> list[Message]:
+    found = settings_kept.damaged(connection)
+    return [Message("verify.kept", {"table": table, "name": name}) for table, name in found]
 
 
 def _chain(connection: sa.Connection) -> list[Message]:

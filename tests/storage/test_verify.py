@@ -103,6 +103,23 @@ def test_a_derived_table_that_went_stale_is_found(filled: Path) -> None:
     assert findings(filled) == [("verify.derived", None)]
 
 
+def test_a_damaged_layout_or_draft_is_left_out_and_named(filled: Path) -> None:
+    with Store.open(filled) as store:
+        store.put_layout("night", "mine")
+        store.put_layout("day", "mine")
+        store.put_draft("strip", "ipap 1", NOW)
+    tamper(
+        filled, "UPDATE layout SET text = 'other' WHERE name = 'night'", "UPDATE draft SET text = 'ipap 2'"
+    )
+    with Store.open(filled) as store:
+        assert dict(store.layouts()) == {"day": "mine"}
+        assert store.draft("strip") is None
+        assert [(m.key, m.values["name"]) for m in store.verify()] == [
+            ("verify.kept", "night"),
+            ("verify.kept", "strip"),
+        ]
+
+
 def test_the_tail_cut_off_is_told_by_a_printed_head(filled: Path) -> None:
     with Store.open(filled) as store:
         printed = store.printed_head()

@@ -198,6 +198,7 @@ def _layout() -> None:
         sa.Column("name", sa.Text(), primary_key=True),
         sa.Column("text", sa.Text(), nullable=False),
         sa.Column("revision", sa.Integer(), nullable=False),
+        sa.Column("sha", sa.String(64), nullable=False),
     )
 
 
@@ -207,6 +208,7 @@ def _draft() -> None:
         sa.Column("name", sa.Text(), primary_key=True),
         sa.Column("text", sa.Text(), nullable=False),
         sa.Column("saved_at", sa.BigInteger(), nullable=False),
+        sa.Column("sha", sa.String(64), nullable=False),
     )
 
 

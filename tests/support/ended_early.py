@@ -1,0 +1,68 @@
+"""Runs the logging child and ends it early: what it had acknowledged must be there afterwards."""
+
+from __future__ import annotations
+
+import os
+import random
+import subprocess
+import sys
+from pathlib import Path
+
+from storage.store import Store
+
+ROOT = Path(__file__).parents[2]
+
+
+def start(
+    path: Path, episode: str, count: int, *more: str, secret: str | None = None, preload: str = ""
+) -> subprocess.Popen[str]:
+    """A logging child that is ready to log."""
+    env = {
+        **os.environ,
+        **({"LUFF_SECRET": secret} if secret else {}),
+        **({"LD_PRELOAD": preload} if preload else {}),
+    }
+    command = [sys.executable, "-m", "tests.support.logging_child", str(path), episode, str(count), *more]
+    child = subprocess.Popen(command, stdout=subprocess.PIPE, text=True, cwd=ROOT, env=env)
+    assert child.stdout is not None
+    assert child.stdout.readline() == "ready\n"
+    return child
+
+
+def acknowledged(lines: list[str]) -> list[int]:
+    """The numbers of the entries that the child said were taken. A line cut off by the kill counts for nothing."""
+    return [int(line.split()[1]) for line in lines if line.endswith("\n") and not line.startswith("error")]
+
+
+def kill_while_logging(
+    path: Path, episode: str, chance: random.Random, secret: str | None = None
+) -> list[int]:
+    """Kill a child at a random moment while it logs; what it had acknowledged."""
+    child = start(path, episode, 100_000, secret=secret)
+    assert child.stdout is not None
+    lines = [child.stdout.readline() for _ in range(chance.randint(0, 40))]
+    try:
+        child.wait(chance.random() * 0.02)
+    except subprocess.TimeoutExpired:
+        child.kill()
+    return acknowledged(lines + rest_of(child))
+
+
+def rest_of(child: subprocess.Popen[str]) -> list[str]:
+    """What a child that ended still had to say; it is waited for and its pipe closed."""
+    assert child.stdout is not None
+    with child.stdout:
+        lines = child.stdout.readlines()
+    child.wait()
+    return lines
+
+
+def assert_all_there(path: Path, taken: dict[str, list[int]], secret: str | None = None) -> None:
+    """Every acknowledged entry is there, at most one more of each child, and the chain holds."""
+    with Store.open(path, passphrase=secret) as store:
+        for episode, numbers in taken.items():
+            found = [int(e.raw) for e in store.entries(episode)]
+            assert found[: len(numbers)] == numbers
+            assert found == list(range(len(found)))
+            assert len(found) <= len(numbers) + 1
+        assert store.verify() == ()
