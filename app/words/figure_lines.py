@@ -165,7 +165,8 @@ class FigureLines:
             return steps or self.tr("Settings changed")
         if r.anchor == "break_end" and steps:
             return steps
-        head = self.tr(_ANCHORS[r.anchor])
+        running = any(m.key == "response.support_was_running" for m in r.why)
+        head = self.tr("Support was running") if running else self.tr(_ANCHORS[r.anchor])
         return f"{head}: {steps}" if steps else head
 
     def steps(self, steps: Iterable[Step]) -> str:

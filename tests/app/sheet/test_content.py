@@ -69,7 +69,8 @@ def test_a_change_stands_with_its_response_in_words(tmp_path: Path) -> None:
 
 def test_a_change_that_is_not_judged_says_why(tmp_path: Path) -> None:
     _, page = one(tmp_path, "01:00 bpap-st 14/5 28", "02:10 ph 7.33 paco2 58 site arterial")
-    assert page.changes[0].response.startswith("Not judged. No baseline: no gas before it")
+    assert page.changes[0].what.startswith("Support was running: Mode BPAP-ST, IPAP 14 cmH2O")
+    assert page.changes[0].response.startswith("Not judged. Support was running when logging began. No baseline")
 
 
 def test_a_gas_that_is_not_acidotic_is_not_called_resolved_in_a_heading(tmp_path: Path) -> None:
