@@ -16,6 +16,7 @@ from PySide6.QtCore import QObject, QTimer, Signal, Slot
 
 from app.clock import REAL, Clock
 from app.failure import Failure
+from app.flag_keeper import FlagKeeper
 from app.operations import store as store_operations
 from app.operations.outcome import Outcome
 from app.runner import Operation, Runner
@@ -109,6 +110,7 @@ class SessionModel(QObject):
         self._tick = QTimer(self)
         self._tick.setInterval(TICK_MS)
         self._tick.timeout.connect(self._ticked)
+        self.flags = FlagKeeper(self)
 
     @property
     def session(self) -> Session:
@@ -120,11 +122,13 @@ class SessionModel(QObject):
         self.ask(store_operations.describe, None, done=self._described, subject="store facts")
         self._poll.start()
         self._tick.start()
+        self.flags.start()
 
     def close(self) -> None:
         """Stop the timers and the runner."""
         self._poll.stop()
         self._tick.stop()
+        self.flags.stop()
         self.runner.close()
 
     def ask(

@@ -9,6 +9,7 @@ from app.commands.context import Context
 from app.formats import quantity, wall
 from app.operations import entry as operations
 from app.operations import episode as episodes
+from app.operations import flag as flags
 from app.operations.outcome import Outcome
 from app.words import Reader
 from core.record.channels import CHANNELS, Kind
@@ -35,6 +36,8 @@ def run(context: Context, args: argparse.Namespace) -> int:
             return _list(context, record, reader)
         entry_id = _whole_id(record, args.entry)
         outcome = _supersede(context, store, args, entry_id)
+        touched = {args.episode, outcome.value.episode}
+        flags.keep_transitions(store, context.by, context.now(), sorted(touched))
     made = outcome.value
     context.answer(f"Done: {made.entries[0].action} of {CHANNELS[made.entries[0].channel].name} in {made.episode}.",
                    {"episode": made.episode, "ids": list(made.ids), "head": outcome.head})  # fmt: skip

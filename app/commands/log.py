@@ -9,6 +9,7 @@ from math import isnan
 from app.commands.context import Context
 from app.formats import plain, quantity, trimmed, wall
 from app.operations import entry as operations
+from app.operations import flag as flags
 from app.words import Reader, sentence
 from app.words.template import quantity_name
 from core.record.channels import Group, Kind
@@ -27,6 +28,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
             print(f"luffmark: not recorded. {_asked(shown, reader)} Answer yes with --yes.", file=sys.stderr)
             return 1
         recorded = operations.log_line(store, context.by, now, request)
+        flags.keep_transitions(store, context.by, now, [shown.episode])
     value = {
         "episode": shown.episode, "at": wall_iso(shown.line.at, reader.zone), "ids": list(recorded.value.ids),
         "recorded": [{"channel": r.channel.key, "value": r.value, "unit": r.channel.unit}
