@@ -59,7 +59,7 @@ def parser() -> argparse.ArgumentParser:
         "window opens.",
     )  # fmt: skip
     top.set_defaults(module="window")
-    top.add_argument("--version", action="version", version=_version())
+    top.add_argument("--version", action=_Version, nargs=0, help="show the program's version and exit")
     commands = top.add_subparsers(title="commands", metavar="COMMAND")
 
     def command(name: str, help: str, module: str | None = None) -> argparse.ArgumentParser:
@@ -184,13 +184,17 @@ def size(text: str) -> tuple[int, int]:
     return int(width), int(height)
 
 
-def _version() -> str:
-    from importlib.metadata import PackageNotFoundError, version
+class _Version(argparse.Action):
+    """Looks the version up only when it is asked for: that is slow."""
 
-    try:
-        return f"luffmark {version('luffmark')}"
-    except PackageNotFoundError:
-        return "luffmark (not installed)"
+    def __call__(self, parser: argparse.ArgumentParser, *_: object) -> None:
+        from importlib.metadata import PackageNotFoundError, version
+
+        try:
+            print(f"luffmark {version('luffmark')}")
+        except PackageNotFoundError:
+            print("luffmark (not installed)")
+        parser.exit(DONE)
 
 
 if __name__ == "__main__":

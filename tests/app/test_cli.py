@@ -318,3 +318,49 @@ def test_help_and_verify_load_neither_qt_nor_pandas(store: Path, filled: Any) ->
     environment = dict(os.environ, TZ="Europe/London")
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, env=environment, check=True)
     assert done.stdout.strip().splitlines()[-1] == "[]"
+
+
+SHIFT = ("--from", "2026-03-27T19:30Z", "--to", "2026-03-27T23:00Z")
+
+
+def test_handover_is_written_as_pdf_and_as_text(filled: Any, tmp_path: Path) -> None:
+    from pypdf import PdfReader
+
+    pdf, txt = tmp_path / "h.pdf", tmp_path / "h.txt"
+    code, out, err = filled("handover", *SHIFT, "--out", pdf, "--given-by", "A. Giver", "--paper", "Letter")
+    assert code == DONE, err
+    assert "2 pages, 1 episodes" in out
+    reader = PdfReader(pdf)
+    assert len(reader.pages) == 2
+    assert round(reader.pages[0].mediabox.width) == 612
+    assert filled("handover", *SHIFT, "--out", txt)[0] == DONE
+    said = txt.read_text("utf-8")
+    assert "BED 4: Acidotic: pH 7.33, PaCO2 57 mmHg at 21:25" in said
+    assert "better: pH +0.07, PaCO2 -11 mmHg after 1 h 05 min" in said.replace("Better", "better")
+    assert filled("handover", *SHIFT)[1].strip().splitlines()[0].startswith("HANDOVER. Shift 27-Mar-2026 19:30")
+
+
+def test_handover_refuses_what_it_cannot_write_and_leaves_nothing(filled: Any, tmp_path: Path) -> None:
+    code, _, err = filled("handover", *SHIFT, "--out", tmp_path / "gone" / "h.pdf")
+    assert code == REFUSED
+    assert "folder" in err
+    assert filled("handover", *SHIFT, "--out", tmp_path / "h.docx")[0] == WRONG_USAGE
+    backwards = ("--from", "2026-03-27T23:00Z", "--to", "2026-03-27T19:30Z")
+    assert "before it starts" in filled("handover", *backwards, "--out", tmp_path / "h.pdf")[2]
+    assert not [p for p in tmp_path.iterdir() if p.name.startswith("h.")]
+
+
+@pytest.mark.parametrize(("suffix", "start"), [("png", b"\x89PNG"), ("svg", b"<?xml"), ("pdf", b"%PDF")])
+def test_a_picture_is_drawn_in_each_format(filled: Any, tmp_path: Path, suffix: str, start: bytes) -> None:
+    out = tmp_path / f"n4.{suffix}"
+    code, _, err = filled("picture", "N4", "--out", out, "--as-of", "2026-03-27T23:00Z", "--size", "900x600")
+    assert code == DONE, err
+    assert out.read_bytes().startswith(start)
+    assert out.stat().st_size > 3000
+
+
+def test_a_picture_that_cannot_be_is_refused(filled: Any, tmp_path: Path) -> None:
+    assert filled("picture", "N4", "--out", tmp_path / "x.gif")[0] == WRONG_USAGE
+    assert filled("picture", "N4", "--out", tmp_path / "gone" / "x.png")[0] == REFUSED
+    assert filled("picture", "N9", "--out", tmp_path / "x.png")[0] == REFUSED
+    assert not (tmp_path / "x.png").exists()
