@@ -267,6 +267,10 @@ class LogStrip(QFrame):
             self._enter_pending = True
 
     def _record_now(self, *, confirmed: bool) -> None:
+        if not self._model.session.person:
+            nobody = self.tr("Nobody is signed in: Ctrl+I says who you are, then Enter records.")
+            self._become(State.READY, escape(nobody))
+            return
         request = self._request(confirmed)
         self.line.clear()
         self._preview, self._enter_pending = None, False

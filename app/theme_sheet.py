@@ -154,4 +154,5 @@ def sheet(theme: Theme) -> str:
     inner = {f"g{n}_1": max(distances[f"g{n}"] - 1, 0) for n in range(1, 5)}
     sizes = {name: theme.px(getattr(t, name)) for name in ("caption", "body", "emphasis", "title", "display")}
     colours = {name: getattr(c, name) for name in _SURFACES + _INKS}
-    return _SHEET.format(radius=8, bar=3, target=theme.px(24), choice=theme.px(20), menu=theme.px(10), **distances, **inner, **sizes, **colours)
+    targets = {"target": theme.px(24), "choice": theme.px(20), "menu": theme.px(10)}
+    return _SHEET.format(radius=8, bar=3, **targets, **distances, **inner, **sizes, **colours)

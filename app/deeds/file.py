@@ -12,7 +12,6 @@ from PySide6.QtWidgets import QDialog, QFileDialog, QInputDialog, QLineEdit
 
 from app.clock import REAL, running_from
 from app.deeds.doer import Doer
-from app.dialogs.sign_in import SignInDialog
 from app.local_zone import local_zone
 from app.runner import Opener, Runner
 from app.session import Session, SessionModel
@@ -159,6 +158,8 @@ class FileDeeds(Doer):
 
     def do_sign_in(self) -> None:
         """Ask for initials."""
+        from app.dialogs.sign_in import SignInDialog
+
         dialog = SignInDialog(self.model.session.person, self.window.theme, self.window)
         if dialog.exec() == QDialog.DialogCode.Accepted:
             self.become(dialog.person)

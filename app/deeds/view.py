@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from PySide6.QtWidgets import QApplication
 
 from app.deeds.doer import Doer
-from app.explain import Explainer, Explanation
-from app.fact import Fact
 from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, ResponseFigure
+
+if TYPE_CHECKING:
+    from app.explain import Explanation
 
 
 class ViewDeeds(Doer):
@@ -26,6 +29,8 @@ class ViewDeeds(Doer):
         ExplainDialog(explanation, self.window.theme, self.window).open()
 
     def _of_focus(self) -> Explanation | None:
+        from app.fact import Fact
+
         widget = QApplication.focusWidget()
         while widget is not None:
             if isinstance(widget, Fact):
@@ -52,6 +57,8 @@ class ViewDeeds(Doer):
 
     def of_payload(self, payload: object) -> Explanation | None:
         """The explanation of a figure."""
+        from app.explain import Explainer
+
         explainer = Explainer(self.model.session.policy, self.window.reader)
         if isinstance(payload, FlagFigure):
             return explainer.flag(payload)

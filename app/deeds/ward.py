@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
 from app.failure import Failure, failure_of
-from app.operations import handover
 from app.operations.outcome import Outcome
 from app.ward.ordering import Order, Shown
 from app.words import sentence
+
+if TYPE_CHECKING:
+    from app.operations import handover
 
 
 class WardDeeds(Doer):
@@ -69,6 +72,8 @@ class WardDeeds(Doer):
 
     def show_handover_text(self) -> None:
         """Gather this shift and show it."""
+        from app.operations import handover
+
         self.pages.handover.say(self.tr("Gathering the shift..."))
         self.model.ask(
             handover.prepare,
@@ -79,6 +84,8 @@ class WardDeeds(Doer):
         )
 
     def _request(self) -> handover.HandoverRequest:
+        from app.operations import handover
+
         shift, session = self.window.shift(), self.model.session
         return handover.HandoverRequest(shift.start, min(shift.end, session.moment()), session.as_known_at)
 
@@ -94,6 +101,8 @@ class WardDeeds(Doer):
 
     def save_handover(self, path: Path) -> None:
         """Write the sheet of this shift."""
+        from app.operations import handover
+
         self._path = path
         self.model.ask(handover.prepare, self._request(), done=self._print, subject="handover sheet")
 

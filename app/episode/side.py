@@ -51,7 +51,9 @@ class SideColumn(QScrollArea):
 
     def show_figures(self, figures: EpisodeFigures, policy: Policy, reader: Reader) -> None:
         """Draw the figures anew, keeping the place that was scrolled to."""
-        place = self.verticalScrollBar().value()
+        place, old = self.verticalScrollBar().value(), self.facts()
+        focused = next((n for n, fact in enumerate(old) if fact.hasFocus()), None)
+        unfolded = {fact.accessibleName().partition(".")[0] for fact in old if fact.is_unfolded}
         maker = _Facts(self._theme, figures, Explainer(policy, reader), reader)
         inside = QWidget()
         column = QVBoxLayout(inside)
@@ -73,7 +75,17 @@ class SideColumn(QScrollArea):
             column.addWidget(card)
         column.addStretch(1)
         self.setWidget(inside)
+        self._as_before(focused, unfolded)
         self.verticalScrollBar().setValue(place)
+
+    def _as_before(self, focused: int | None, unfolded: set[str]) -> None:
+        """News must not take the focus away, nor fold what was opened."""
+        facts = self.facts()
+        for fact in facts:
+            if fact.accessibleName().partition(".")[0] in unfolded:
+                fact.unfold()
+        if focused is not None and facts:
+            facts[min(focused, len(facts) - 1)].setFocus()
 
 
 class _Facts:

@@ -28,7 +28,6 @@ LONG = 36 * HOUR
 def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
     """Everything of the episode, ready to draw."""
     start = _start(on)
-    until = on.course.until
     maker = TraceMaker(
         on.record, on.figures, on.course, on.gas_unit, on.policy.leak.doubt_tidal_volume_above_L_per_min.value
     )

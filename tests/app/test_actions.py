@@ -14,8 +14,13 @@ from app.deeds.view import ViewDeeds
 from app.deeds.ward import WardDeeds
 
 SERVERS = {
-    "file": FileDeeds, "log": LogDeeds, "ward": WardDeeds, "episode": EpisodeDeeds, "view": ViewDeeds, "help": HelpDeeds,
-}  # fmt: skip
+    "file": FileDeeds,
+    "log": LogDeeds,
+    "ward": WardDeeds,
+    "episode": EpisodeDeeds,
+    "view": ViewDeeds,
+    "help": HelpDeeds,
+}
 
 
 @pytest.mark.parametrize("deed", DEEDS, ids=lambda d: d.key)

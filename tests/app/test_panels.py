@@ -77,10 +77,13 @@ def test_added_changed_moved_duplicated_removed():
         ({"channels": ()}, "panel.empty"),
         ({"channels": ("note",)}, "panel.channel_unknown"),
         ({"channels": ("ph", "spo2", "leak")}, "panel.too_many_units"),
-        ({"channels": ("ipap", "epap", "cpap", "pip", "pressure_support", "rate_set")}, "panel.too_many_channels"),
+        (
+            {"channels": ("ipap", "epap", "cpap", "pip", "pressure_support", "rate_set")},
+            "panel.too_many_channels",
+        ),
         ({"low": 10.0, "high": 5.0}, "panel.axis_upside_down"),
     ],
-)  # fmt: skip
+)
 def test_a_refused_change_leaves_the_set_as_it_was(values, key):
     before = the_set()
     with pytest.raises(RecordError) as error:
@@ -106,9 +109,15 @@ names = st.text(
     st.characters(codec="utf-8", exclude_categories=("Cs", "Cc")), min_size=1, max_size=20
 ).filter(str.strip)
 panels = st.builds(
-    Panel, key=st.uuids().map(str), title=names.map(str.strip), channels=st.sampled_from([("ph",), ("spo2", "rr"), ("leak",)]),
-    height=st.floats(0.5, 3.0), low=st.none() | st.floats(0, 5), high=st.none() | st.floats(6, 90), bands=st.booleans(),
-)  # fmt: skip
+    Panel,
+    key=st.uuids().map(str),
+    title=names.map(str.strip),
+    channels=st.sampled_from([("ph",), ("spo2", "rr"), ("leak",)]),
+    height=st.floats(0.5, 3.0),
+    low=st.none() | st.floats(0, 5),
+    high=st.none() | st.floats(6, 90),
+    bands=st.booleans(),
+)
 
 
 @given(st.lists(panels, min_size=1, max_size=6).map(lambda p: PanelSet(tuple(p))))

@@ -39,6 +39,8 @@ def filled(path: Path, *, encrypted: bool) -> Path:
 def read_all(store: Store) -> object:
     """Everything a person could read in a store."""
     keys = ("E0", "E1", "E2")
+    for key in keys:
+        store.episode(key)
     samples = [(b.channel, b.source, b.t.tolist(), b.v.tolist()) for k in keys for b in store.samples(k)]
     documents = [(d, store.document(d.id)) for d in store.documents()]
     kept = (dict(store.layouts()), dict(store.drafts()))

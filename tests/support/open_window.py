@@ -29,8 +29,8 @@ BEDS = {
     "bed-7": (
         {"label": "Bed 7", "indication": "copd", "location": "Bay B", "ceiling_of_care": "full"},
         ("23:40 ph 7.26 paco2 68 pao2 58 gas_fio2 28% rr 30 spo2 87 hr 110 gcs 15", "00:00 bpap-st 14/5 28",
-         "01:05 ph 7.27 paco2 67 pao2 60", "02:00 18/5", "03:05 ph 7.24 paco2 71 pao2 61 rr 27 gcs 14 spo2 89", "04:30 skin check",
-         "05:00 rr 27 spo2 90 gcs 14"),
+         "01:05 ph 7.27 paco2 67 pao2 60", "02:00 18/5",
+         "03:05 ph 7.24 paco2 71 pao2 61 rr 27 gcs 14 spo2 89", "04:30 skin check", "05:00 rr 27 spo2 90 gcs 14"),
     ),
     "bed-3": (
         {"label": "Bed 3", "indication": "copd", "location": "Bay A", "ceiling_of_care": "full"},
