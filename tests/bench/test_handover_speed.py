@@ -20,7 +20,9 @@ LIMIT_S = 3.0
 """A handover of 12 episodes on a plain desktop."""
 
 
-def test_a_handover_of_twelve_episodes(tmp_path: Path, qapp: QApplication, capsys: pytest.CaptureFixture[str]) -> None:
+def test_a_handover_of_twelve_episodes(
+    tmp_path: Path, qapp: QApplication, capsys: pytest.CaptureFixture[str]
+) -> None:
     now = demo.demo_now()
     request = operations.HandoverRequest(now - 10 * HOUR, now)
     with Store.open(demo.make_demo_store(tmp_path)) as store:
