@@ -17,6 +17,7 @@ from sqlalchemy import event
 from sqlalchemy.exc import DBAPIError
 from sqlcipher3 import dbapi2
 
+from core.record.message import RecordError
 from storage.errors import DRIVER_ERRORS, StoreError, store_error, translated
 
 APPLICATION_ID = 0x4C556666
@@ -77,9 +78,18 @@ class Database:
 
     @contextmanager
     def read(self) -> Iterator[sa.Connection]:
-        """A short read of one consistent state."""
-        with self._translating(), self.engine.connect() as connection, connection.begin():
-            yield connection
+        """A short read of one consistent state.
+
+        Raises:
+            StoreError: `store.damaged` also where a value is of a kind that is never written.
+        """
+        try:
+            with self._translating(), self.engine.connect() as connection, connection.begin():
+                yield connection
+        except RecordError:
+            raise
+        except (TypeError, ValueError, KeyError, OverflowError) as error:
+            raise store_error("store.damaged", path=self.path.name, detail=str(error)[:200]) from error
 
     @contextmanager
     def write(self) -> Iterator[sa.Connection]:

@@ -150,7 +150,7 @@ class Store:
     def _head(self) -> tuple[int, str]:
         with self._opened.database.read() as connection:
             last = last_batch(connection)
-        return (0, GENESIS) if last is None else (int(last["last_seq"]), str(last["hash"]))
+            return (0, GENESIS) if last is None else (int(last["last_seq"]), str(last["hash"]))
 
     def head_known_at(self, known_at: Instant) -> int:
         """The largest sequence recorded by a moment; 0 when nothing had been."""
