@@ -32,7 +32,8 @@ def findings(database: Database, *, encrypted: bool) -> tuple[Message, ...]:
             with database.read() as connection:
                 found += check(connection)
         except StoreError as error:
-            found.append(Message("verify.unreadable", dict(error.message.values)))
+            values = {"path": database.path.name, **error.message.values}
+            found.append(Message("verify.unreadable", values))
     return tuple(found)
 
 

@@ -68,6 +68,7 @@ TEMPLATES: Final[dict[str, str]] = {
         "first {episode}.",
     "verify.document": "Document {id} is damaged (row {seq}).",
     "verify.entry": "Entry {seq} breaks a rule: {what}.",
+    "verify.kept": "The {table} '{name}' is damaged and is left out.",
     "verify.orphan": "Row {seq} claims batch {batch}, which does not own it.",
     "verify.pages": "The file is damaged: {detail}.",
     "verify.trigger": "The safeguard {name} is not as it should be: {what}.",
