@@ -8,6 +8,7 @@ from core.figures.episode_figures import judged
 from core.judgement.context import Context
 from core.judgement.due import due_items
 from core.judgement.flags import evaluate, spells_of
+from core.judgement.markers.evidence import KEYS
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.registry import MARKERS
 from core.judgement.markers.spells import Spell
@@ -37,7 +38,10 @@ def clock(moment: Instant) -> str:
 def spells(marker: str, log: str, as_of: str = "12:00", policy: Policy | None = None) -> list[Spell]:
     """The spells of a marker."""
     context = ctx(log, as_of, policy)
-    return spells_of(Observed(context), MARKERS[marker], context.policy.markers[marker])
+    found = spells_of(Observed(context), MARKERS[marker], context.policy.markers[marker])
+    for message in (m for s in found for m in s.evidence):
+        assert set(message.values) == set(KEYS[message.key]), f"{message.key} has other values than its list says"
+    return found
 
 
 def met(marker: str, log: str, as_of: str = "12:00", policy: Policy | None = None) -> str:

@@ -1,8 +1,8 @@
 """Not better: a pH gain of at most 0.033 with pH below 7.35, 45-135 min after the start or the change.
 
 Sources: BTS 2002, Thorax 57:192 (no better at 1-2 h; no gain after 4-6 h, from memory); Confalonieri, ERJ 2005;
-25:348; noise of pH: Thorson, Chest 1983;84:14. Too little support: BTS/ICS 2016 (from memory). Late failure: Ozyilmaz, BMC
-Pulm Med 2014;14:19. What counts as settling is common practice, no source.
+25:348; noise of pH: Thorson, Chest 1983;84:14. Too little support: BTS/ICS 2016 (from memory). Late failure:
+Ozyilmaz, BMC Pulm Med 2014;14:19. What counts as settling is common practice, no source.
 """
 
 import pytest

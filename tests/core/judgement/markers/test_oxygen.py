@@ -1,8 +1,8 @@
 """Oxygenation at its edges.
 
 Sources: BTS 2017, Thorax 72 S1 (ranges); Antonelli, ICM 2001;27:1718 (P/F at most 146 after 1 h); Thille, Crit
-Care 2013;17:R269 (150 in moderate ARDS); Spada, J Crit Care 2011 (S/F below 98.5 at the start); ERJ table of trial criteria
-(PaO2 below 6 kPa). Minutes and counts of readings are common practice, no source.
+Care 2013;17:R269 (150 in moderate ARDS); Spada, J Crit Care 2011 (S/F below 98.5 at the start); ERJ table of trial
+criteria (PaO2 below 6 kPa). Minutes and counts of readings are common practice, no source.
 """
 
 import pytest
