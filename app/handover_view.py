@@ -7,7 +7,7 @@ from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QTextBrowser, QVBoxLayout, QWidget
 
 from app.handover.page_html import page_html
-from app.sheet.content import SheetContent
+from app.sheet.shapes import SheetContent
 from app.theme import Theme
 
 

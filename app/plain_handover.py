@@ -6,8 +6,8 @@ from collections.abc import Iterator
 from textwrap import fill
 
 from app.formats import plain
-from app.sheet.content import EpisodePage, FlagLine, SheetContent, WardPage, WardRow
 from app.sheet.gas_table import GasRow
+from app.sheet.shapes import EpisodePage, FlagLine, SheetContent, WardPage, WardRow
 
 WIDTH = 100
 

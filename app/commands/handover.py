@@ -9,7 +9,8 @@ from pathlib import Path
 from app.commands.context import Context
 from app.operations import handover as operations
 from app.plain_handover import handover_text
-from app.sheet.content import SheetContent, sheet_content
+from app.sheet.content import sheet_content
+from app.sheet.shapes import SheetContent
 from core.record.local_time import zoned_iso
 
 _TEXT = (".txt", ".text", ".md")

@@ -6,7 +6,7 @@ from collections.abc import Iterable, Iterator
 from html import escape
 
 from app.phrases import translate
-from app.sheet.content import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
+from app.sheet.shapes import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
 from app.theme import Theme, Tier, tier_word
 
 

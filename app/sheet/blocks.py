@@ -235,7 +235,7 @@ class RuledBox:
             top += press.text(x + press.gap(5), top, width - press.gap(10), self.words, BODY)
         line = top + press.gap(self.rule)
         while line < y + high - press.gap(3):
-            press.line(x + press.gap(5), line, x + width - press.gap(5), line, 0.3, LINE, (2, 3))
+            press.line(x + press.gap(5), line, x + width - press.gap(5), line, 0.3, "#bbbbbb")
             line += press.gap(self.rule)
 
 

@@ -7,124 +7,23 @@ missing; nothing is left blank.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 from app import formats
 from app.finding_names import due_name, marker_name
 from app.operations.handover import Handover
-from app.sheet.chart_data import ShiftChart, shift_chart
-from app.sheet.gas_table import GasRow, gas_rows
+from app.sheet.chart_data import shift_chart
+from app.sheet.gas_table import gas_rows
+from app.sheet.shapes import ChangeLine, EpisodePage, Fact, FlagLine, SheetContent, WardPage, WardRow
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from core.figures.shift import ShiftFigures
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, Step
 from core.record.instant import HOUR
 
-CAUTION = (
-    "Supports and never replaces clinical judgement. It is no alarm and no monitor. Local policy and licensed "
-    "practice come first. Sources marked 'from memory' or 'common practice' are to be confirmed locally."
-)
 _STATES = {"severe": "Severe acidosis", "acidotic": "Acidotic", "resolved": "Not acidotic"}
 """A gas that is not acidotic may still be a bad one: in a heading "resolved" would say too much."""
 _STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
-Fact = tuple[str, str]
-
-
-@dataclass(frozen=True, slots=True)
-class FlagLine:
-    """One flag: its tier, its head on one line, its evidence, and where the marker comes from."""
-
-    tier: str
-    head: str
-    evidence: str
-    source: str
-    is_open: bool
-    is_strongest: bool = True
-
-
-@dataclass(frozen=True, slots=True)
-class ChangeLine:
-    """One change of the shift: when, what, and what it did in words."""
-
-    at: str
-    what: str
-    response: str
-    verdict: str = ""
-
-
-@dataclass(frozen=True, slots=True)
-class WardRow:
-    """One episode on the ward's page. `tier` is its strongest open flag's, or "" for none."""
-
-    number: int
-    label: str
-    who: str
-    tier: str
-    state: str
-    change_of_state: str
-    support: str
-    response: str
-    flags: tuple[str, ...]
-    remarks: str
-    due: str
-    limits: str
-    ended: bool = False
-
-
-@dataclass(frozen=True, slots=True)
-class WardPage:
-    """The page for the ward."""
-
-    title: str
-    shift: str
-    see_first: str
-    rows: tuple[WardRow, ...]
-    due: tuple[str, ...]
-    missing: tuple[str, ...]
-
-
-@dataclass(frozen=True, slots=True)
-class EpisodePage:
-    """The page of one episode."""
-
-    label: str
-    subtitle: str
-    place: int
-    tier: str
-    standing: str
-    facts: tuple[Fact, ...]
-    settings: str
-    changes: tuple[ChangeLine, ...]
-    chart: ShiftChart
-    gases: tuple[GasRow, ...]
-    leak: str
-    flags: tuple[FlagLine, ...]
-    due: tuple[str, ...]
-    care: tuple[Fact, ...]
-    told: tuple[str, ...]
-    plan: str
-    jobs: str
-    remark: str
-    to_check: tuple[str, ...]
-    left_out_changes: int = 0
-    left_out_gases: int = 0
-    left_out_flags: int = 0
-    left_out_checks: int = 0
-    left_out_evidence: int = 0
-
-
-@dataclass(frozen=True, slots=True)
-class SheetContent:
-    """A whole handover, its foot lines and who gives and takes it ("" leaves a line to sign)."""
-
-    ward: WardPage
-    episodes: tuple[EpisodePage, ...]
-    head: str
-    printed: str
-    given_by: str = ""
-    taken_by: str = ""
-    caution: str = CAUTION
-    gas_unit: str = "mmHg"
 
 
 def sheet_content(
@@ -234,8 +133,9 @@ class _Writer:
         before, after = s.state_before, s.state_after
         if s.began and after:
             return "support started this shift"
-        changed = before and after and before != after
-        return f"{_STATES[before].lower()} before, now {_STATES[after].lower()}" if changed else ""
+        if not before or not after or before == after:
+            return ""
+        return f"{_STATES[before].lower()} before, now {_STATES[after].lower()}"
 
     def _latest_response(self, f: EpisodeFigures) -> str:
         judged = [r for r in f.responses if r.headline not in ("not yet known", "not judged")]

@@ -19,9 +19,9 @@ from app.sheet.blocks import (
     height_of,
 )
 from app.sheet.chart_print import ChartBlock
-from app.sheet.content import EpisodePage, FlagLine
 from app.sheet.gas_table import HEADINGS, GasRow
 from app.sheet.press import BODY, SMALL, STRONG, Align, Press
+from app.sheet.shapes import EpisodePage, FlagLine
 
 SCALES = (1.0, 0.96, 0.92, 0.88, 0.84, 0.8, 0.77, 0.74)
 LEAST_CHART, GOOD_CHART, MOST_CHART = 118.0, 150.0, 215.0

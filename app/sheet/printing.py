@@ -10,9 +10,9 @@ from PySide6.QtGui import QGuiApplication, QPagedPaintDevice, QPageLayout, QPage
 
 from app.operations.outcome import report
 from app.sheet.blocks import Signatures
-from app.sheet.content import EpisodePage, SheetContent
 from app.sheet.pages import Fitted, Room, draw_episode, draw_overflow, fit_episode
 from app.sheet.press import SMALL, SUBTITLE, TITLE, Align, Press, Style
+from app.sheet.shapes import EpisodePage, SheetContent
 from app.sheet.ward_sheet import draw_ward, split_ward
 from core.record.message import refuse
 
@@ -78,7 +78,7 @@ def set_paper(device: QPagedPaintDevice, paper: str) -> None:
 def paint(content: SheetContent, device: QPagedPaintDevice, dots_per_inch: int) -> int:
     """Paint every page on a device that is set up; the number of pages. Reports progress by page."""
     size = device.pageLayout().fullRectPoints()
-    painter = QPainter(device)  # type: ignore[arg-type]
+    painter = QPainter(device)
     try:
         return _Job(content, device, Press(painter, dots_per_inch), float(size.width()), float(size.height())).run()
     finally:

@@ -6,8 +6,8 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from app.sheet.blocks import Block, Heading, Signatures, Text, draw_all, draw_tier, height_of
-from app.sheet.content import WardPage, WardRow
 from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Align, Press, Style
+from app.sheet.shapes import WardPage, WardRow
 
 SCALES = (1.08, 1.04, 1.0, 0.96, 0.92, 0.88, 0.85, 0.82, 0.79, 0.77, 0.75)
 LABEL = Style(11, True)

@@ -9,7 +9,8 @@ from PySide6.QtWidgets import QApplication
 from app import demo
 from app.operations import handover as operations
 from app.operations.handover import Handover
-from app.sheet.content import SheetContent, sheet_content
+from app.sheet.content import sheet_content
+from app.sheet.shapes import SheetContent
 from app.words import Reader
 from core.record.instant import parse
 from storage.store import Store

@@ -9,7 +9,8 @@ import pytest
 from app.operations import entry, episode
 from app.operations import handover as operations
 from app.operations.handover import Handover
-from app.sheet.content import EpisodePage, SheetContent, sheet_content
+from app.sheet.content import sheet_content
+from app.sheet.shapes import EpisodePage, SheetContent
 from app.words import Reader
 from core.record.instant import HOUR, parse
 from core.record.message import RecordError

@@ -14,9 +14,9 @@ from PySide6.QtWidgets import QApplication
 from app.operations import handover as operations
 from app.operations.outcome import CancelledError, watched
 from app.plain_handover import handover_text
-from app.sheet.content import ChangeLine, FlagLine, SheetContent
 from app.sheet.gas_table import GasRow
 from app.sheet.printing import PAPERS, pdf_bytes, write_pdf
+from app.sheet.shapes import ChangeLine, FlagLine, SheetContent
 from core.record.message import RecordError
 from storage.store import Store
 
