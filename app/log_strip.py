@@ -10,8 +10,17 @@ from enum import StrEnum
 from html import escape
 
 from PySide6.QtCore import QEvent, Qt, Signal
-from PySide6.QtGui import QKeyEvent, QKeySequence
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QLineEdit, QPushButton, QSizePolicy, QVBoxLayout
+from PySide6.QtGui import QKeyEvent, QKeySequence, QResizeEvent
+from PySide6.QtWidgets import (
+    QBoxLayout,
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QPushButton,
+    QSizePolicy,
+    QVBoxLayout,
+)
 
 from app.failure import Failure
 from app.operations import entry
@@ -89,6 +98,7 @@ class LogStrip(QFrame):
         self._enter_pending = False
         self._undo: list[Recorded] = []
         self._off_mask = False
+        self._closed = ""
         self.whom = QLabel()
         self.whom.setProperty("role", "emphasis")
         self.line = LineField()
@@ -99,7 +109,6 @@ class LogStrip(QFrame):
         self.said.setAlignment(Qt.AlignmentFlag.AlignTop)
         self.said.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
         self.buttons: dict[str, QPushButton] = {}
-        self._row = QHBoxLayout()
         self._column = QVBoxLayout(self)
         self._lay_out()
         self._connect()
@@ -107,8 +116,12 @@ class LogStrip(QFrame):
         self.set_patient(None, "", "UTC", "mmHg")
 
     def _lay_out(self) -> None:
-        self._row.addWidget(self.whom)
-        self._row.addWidget(self.line, 1)
+        self._row = QBoxLayout(QBoxLayout.Direction.LeftToRight)
+        line, keys = QHBoxLayout(), QHBoxLayout()
+        line.addWidget(self.whom)
+        line.addWidget(self.line, 1)
+        self._row.addLayout(line, 1)
+        self._row.addLayout(keys)
         for key, word, shortcut in (
             ("gas sent", self.tr("Gas sent"), "F6"),
             ("mask", self.tr("Mask off"), "F7"),
@@ -119,7 +132,8 @@ class LogStrip(QFrame):
             button.setProperty("role", "small")
             button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
             self.buttons[key] = button
-            self._row.addWidget(button)
+            keys.addWidget(button)
+        keys.addStretch(0)
         self._column.addLayout(self._row)
         self._column.addWidget(self.said)
 
@@ -141,6 +155,16 @@ class LogStrip(QFrame):
         self._row.setSpacing(px(8))
         self.said.setMinimumHeight(round(theme.px(theme.type.body) * 1.25) * 2)
 
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Where the line would be too short, the keys' buttons stand under it."""
+        super().resizeEvent(event)
+        buttons = sum(b.sizeHint().width() for b in self.buttons.values())
+        rest = self.width() - buttons - self.whom.sizeHint().width()
+        direction = QBoxLayout.Direction
+        self._row.setDirection(
+            direction.LeftToRight if rest >= self._theme.px(240) else direction.TopToBottom
+        )
+
     # whom it is for
 
     def set_patient(
@@ -157,10 +181,17 @@ class LogStrip(QFrame):
         self.buttons["mask"].setAccessibleName(word)
         self._off_mask = off_mask
         for widget in (self.line, *self.buttons.values()):
-            widget.setEnabled(record is not None)
+            widget.setEnabled(record is not None and not self._closed)
         self.line.setPlaceholderText(self.tr("16/6 35    14:20 rr 28 spo2 91    gas sent    note ..."))
         if other:
             self._clear()
+
+    def set_closed(self, why: str) -> None:
+        """Take no line, and say why; "" opens the strip again. What was half typed is taken away."""
+        self._closed = why
+        for widget in (self.line, *self.buttons.values()):
+            widget.setEnabled(self._record is not None and not why)
+        self._clear()
 
     @property
     def patient(self) -> str | None:
@@ -169,7 +200,7 @@ class LogStrip(QFrame):
 
     def set_text(self, text: str) -> None:
         """Put words on the line and preview them."""
-        if self._record is not None:
+        if self._record is not None and not self._closed:
             self.line.setText(text)
             self.line.setFocus(Qt.FocusReason.ShortcutFocusReason)
             self._edited(text)
@@ -305,6 +336,9 @@ class LogStrip(QFrame):
 
     def undo(self) -> None:
         """Take back the last recording made here."""
+        if self._closed:
+            self._clear()
+            return
         if not self._undo:
             self._become(State.TOLD, escape(self.tr("Nothing to undo.")))
             return
@@ -336,6 +370,8 @@ class LogStrip(QFrame):
         return reader_at(self._zone, self._gas_unit, self._model.session.now())
 
     def _hint(self) -> str:
+        if self._closed:
+            return f"<b>{escape(self._closed)}</b>"
         if self._record is None:
             return escape(self.tr("Choose a patient first."))
         text = self.tr(

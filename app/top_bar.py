@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Signal
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
+from PySide6.QtWidgets import QLabel, QPushButton, QSizePolicy, QWidget
 
 from app.choice_row import ChoiceRow
+from app.flow_row import FlowRow
 from app.formats import wall
 from app.session import Session
 from app.theme import Theme
@@ -25,8 +26,10 @@ class TopBar(QWidget):
             (
                 ("ward", self.tr("Ward")),
                 ("episode", self.tr("Episode")),
+                ("map", self.tr("Map")),
                 ("compare", self.tr("Compare")),
                 ("handover", self.tr("Handover")),
+                ("statistics", self.tr("Figures")),
             ),
         )
         self.moment = QLabel()
@@ -35,11 +38,10 @@ class TopBar(QWidget):
         self.person = QPushButton()
         self.person.setProperty("role", "small")
         self.person.setToolTip(self.tr("Change person (Ctrl+I)"))
-        self._row = QHBoxLayout(self)
+        self._row = FlowRow(self)
         self._row.addWidget(self.pages)
-        self._row.addStretch(1)
-        self._row.addWidget(self.moment)
-        self._row.addWidget(self.person)
+        self._row.add_right(self.moment)
+        self._row.add_right(self.person)
         self.pages.chosen.connect(self.page_chosen)
         self.person.clicked.connect(self._want_person)
         self.set_theme(theme)
@@ -62,7 +64,9 @@ class TopBar(QWidget):
             text = self.tr("As of {time}").format(time=wall(at, zone))
         else:
             text = wall(at, zone)
-        if session.as_known_at is not None:
+        if session.as_known_at is not None and session.as_known_at == session.as_of:
+            text = self.tr("As known at {time}").format(time=wall(at, zone))
+        elif session.as_known_at is not None:
             text += self.tr(", as known {time}").format(time=wall(session.as_known_at, zone))
         self.moment.setText(text)
         self.moment.setAccessibleName(text)

@@ -12,6 +12,7 @@ from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QSizePolicy, QVBox
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LaneItem, LanesSpec
 from app.choice_row import ChoiceRow
+from app.flow_row import FlowRow
 from app.formats import clock
 from app.readers import reader_at
 from app.shift import Shift
@@ -22,6 +23,9 @@ from app.ward.ordering import Order, Shown, first_to_see, ordered, shown
 from app.ward.see_first import SeeFirst
 from app.words import sentence
 from core.record.instant import Instant
+
+ROOMY = 380
+"""Least height at 100 % at which the ward view shows more than its lanes."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,14 +113,14 @@ class WardView(QWidget):
 
     def _lay_out(self) -> None:
         px = self._theme.px
-        tools = QHBoxLayout()
-        tools.setSpacing(px(16))
-        tools.addWidget(self.sort)
-        tools.addWidget(self.filter)
-        tools.addStretch(1)
-        tools.addWidget(self.shift)
-        self.search.setMaximumWidth(px(220))
-        tools.addWidget(self.search)
+        self.tools = QWidget()
+        tools = FlowRow(self.tools, px(12))
+        tools.setContentsMargins(0, 0, 0, 0)
+        for widget in (self.sort, self.filter):
+            tools.addWidget(widget)
+        for widget in (self.shift, self.search):
+            tools.add_right(widget)
+        self.search.setFixedWidth(px(166))
         self._foot = QHBoxLayout()
         self._foot.setSpacing(px(16))
         self._foot.addWidget(self.status, 1)
@@ -124,7 +128,7 @@ class WardView(QWidget):
         column.setContentsMargins(px(16), px(8), px(16), px(2))
         column.setSpacing(px(6))
         column.addWidget(self.first)
-        column.addLayout(tools)
+        column.addWidget(self.tools)
         column.addWidget(self.lanes, 1)
         column.addLayout(self._foot)
         self._renew_legend()
@@ -140,11 +144,25 @@ class WardView(QWidget):
         self.search.textChanged.connect(self._search_changed)
         self.search.returnPressed.connect(self.lanes.setFocus)
 
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._make_room()
+
+    def _make_room(self) -> None:
+        """Where large text leaves little height, lanes come first: order and filter stay in the menu."""
+        roomy = self.height() >= self._theme.px(ROOMY)
+        self.tools.setVisible(roomy)
+        self.status.setVisible(roomy)
+        if self._legend is not None:
+            self._legend.setVisible(roomy)
+
     # what to show
 
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
         self._theme = theme
+        self.search.setFixedWidth(theme.px(166))
+        self._make_room()
         self.first.set_theme(theme)
         self.lanes.set_theme(theme)
         self._renew_legend()

@@ -44,7 +44,9 @@ class Readout(QFrame):
         self._theme = theme
         line = round(theme.px(theme.type.body) * 1.45)
         self._settings.setFixedHeight(line)
-        self._values.setFixedHeight(2 * line)
+        self._values.setFixedHeight(
+            line * (2 if theme.text_scale < 1.3 else 3 if theme.text_scale < 1.75 else 4)
+        )
 
     def show_moment(
         self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool

@@ -24,6 +24,10 @@ from core.record.instant import MINUTE
 SCORE_NAMES = {"hacor": "HACOR", "hacor_updated": "HACOR 2022", "news2": "NEWS2", "rox": "ROX"}
 
 
+MOST_WIDTH = 430
+"""Pixels: with large text the panels keep their room, and the column scrolls."""
+
+
 class SideColumn(QScrollArea):
     """Draws the figures of one episode as facts in groups."""
 
@@ -42,7 +46,7 @@ class SideColumn(QScrollArea):
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size; the next figures are drawn in it."""
         self._theme = theme
-        self.setFixedWidth(theme.px(332))
+        self.setFixedWidth(min(theme.px(332), MOST_WIDTH))
 
     def facts(self) -> list[Fact]:
         """All facts from top to bottom."""
