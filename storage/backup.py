@@ -48,6 +48,7 @@ def _check_free(target: Path) -> None:
 
 
 def _copy_in_one_step(store: Path, key: bytes | None, target: Path) -> None:
+    target.touch(mode=0o600)  # for its owner's eyes alone
     with (
         closing(raw_connection(store, key)) as live,
         closing(raw_connection(target, key, mode="rwc")) as copy,
@@ -88,6 +89,7 @@ def restore(source: Path, new: Path) -> None:
         raise store_error("key.envelope_missing", path=keys.envelope_path(source).name)
     unfinished = new.with_name(new.name + ".unfinished")
     try:
+        unfinished.touch(mode=0o600)
         shutil.copyfile(source, unfinished)
         if not encrypted:
             _check_plain(unfinished)

@@ -15,7 +15,7 @@ import json
 import os
 import secrets
 import unicodedata
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from hashlib import sha256
 from pathlib import Path
 from typing import Any
@@ -47,9 +47,9 @@ _MOST = Cost(1_048_576, 20, 16)
 class NewKey:
     """A fresh data key with its envelope's text and the recovery code, which is shown once and never kept."""
 
-    key: bytes
-    envelope: str
-    recovery_code: str
+    key: bytes = field(repr=False)
+    envelope: str = field(repr=False)
+    recovery_code: str = field(repr=False)
 
 
 def envelope_path(store: Path) -> Path:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 from uuid import uuid4
 
@@ -22,10 +22,10 @@ class Opened:
     """An open store's parts. `notices` say why it is read-only, when it is."""
 
     database: Database
-    key: bytes | None
-    facts: dict[str, str]
+    key: bytes | None = field(repr=False)
+    facts: dict[str, str] = field(repr=False)
     notices: tuple[Message, ...] = ()
-    recovery_code: str | None = None
+    recovery_code: str | None = field(default=None, repr=False)
 
 
 def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys.Cost) -> Opened:
@@ -39,6 +39,7 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
     facts = {"format": str(schema.FORMAT), "store_id": str(uuid4()), **facts}
     new = keys.new_key(facts["store_id"], passphrase, cost) if passphrase is not None else None
     key = new.key if new else None
+    _claim(path)
     try:
         if new:
             keys.write_envelope(keys.envelope_path(path), new.envelope)
@@ -58,6 +59,16 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
             made.unlink(missing_ok=True)
         raise
     return Opened(database, key, facts, (), new.recovery_code if new else None)
+
+
+def _claim(path: Path) -> None:
+    """Make the file, for its owner's eyes alone; the journal takes its rights from it."""
+    try:
+        path.touch(mode=0o600, exist_ok=False)
+    except FileExistsError:
+        raise store_error("store.exists", path=path.name) from None
+    except OSError as error:
+        raise store_error("store.cannot_open", path=path.name, detail=error.strerror or "") from error
 
 
 def _fill(database: Database, facts: dict[str, str]) -> None:

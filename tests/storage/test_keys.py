@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import sys
 from collections.abc import Callable
 from pathlib import Path
 
@@ -155,3 +156,35 @@ def test_nothing_typed_is_readable_in_an_encrypted_store(
             for form in (mark, mark.decode().encode("utf-16-le"), mark.hex().encode()):
                 assert form not in data, path.name
     assert {"ward.luff", "ward.luff-wal", "copy.luff", "copy.luff.key"} <= {p.name for p in live}
+
+
+def test_no_secret_stands_in_what_is_printed_of_a_store(make_store: Callable[..., Store]) -> None:
+    store = make_store(encrypted=True)
+    shown = repr(store) + repr(keys.new_key("s", PASSPHRASE, CHEAP))
+    key = store._opened.key
+    assert key is not None
+    assert store.recovery_code is not None
+    for secret in (repr(key), key.hex(), store.recovery_code, PASSPHRASE):
+        assert secret not in shown
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="rights of files as POSIX has them")
+def test_only_the_owner_may_read_a_store_and_its_backup(
+    make_store: Callable[..., Store], tmp_path: Path
+) -> None:
+    store = make_store(encrypted=True)
+    store.put_layout("a", "b")
+    store.backup(tmp_path / "copy.luff")
+    Store.restore(tmp_path / "copy.luff", tmp_path / "new.luff")
+    names = (
+        "ward.luff",
+        "ward.luff.key",
+        "ward.luff-wal",
+        "copy.luff",
+        "copy.luff.key",
+        "new.luff",
+        "new.luff.key",
+    )
+    assert {name: oct((tmp_path / name).stat().st_mode & 0o777) for name in names} == dict.fromkeys(
+        names, "0o600"
+    )

@@ -99,7 +99,7 @@ def values(draw: st.DrawFn) -> NewEntry:
     )
 
 
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(st.lists(values(), min_size=1, max_size=6))
 def test_any_value_and_text_round_trips(entries: list[NewEntry]) -> None:
     entries = [e for e in entries if e.channel not in ("ipap", "epap")]  # pressures are judged together
