@@ -54,7 +54,7 @@ TAKEN = "device rr_total 01:05 03:00 22 22\ndevice rr_total 03:00 04:00 12 12\n"
         (BASE.replace("BPAP-ST", "BPAP-T") + TAKEN + "02:50 gcs 15\n03:20 gcs 14", ""),
         (BASE.replace("copd", "'obesity hypoventilation'") + TAKEN + "02:50 gcs 15\n03:20 gcs 14", ""),
         (BASE.replace("copd", "neuromuscular") + TAKEN + "02:50 gcs 15\n03:20 gcs 14", ""),
-        (BASE + "device rr_total 01:05 04:00 12 12\n02:50 gcs 15\n03:20 gcs 14", ""),  # not new
+        (BASE + "00:50 gcs 15\ndevice rr_total 01:05 04:00 12 12\n03:20 gcs 14", ""),  # not new
         (BASE + TAKEN + "device spont_percent 03:00 04:00 90 90\n02:50 gcs 15\n03:20 gcs 14", ""),  # own breaths
     ],
 )

@@ -123,6 +123,7 @@ def test_a_high_flow_counts_as_the_highest_oxygen_and_an_unknown_one_does_not():
         ("02:00 ph 7.30 paco2 60 pao2 70 site arterial", ""),  # acutely hypercapnic: another population
         ("01:30 o2_flow 10\n02:00 ph 7.45 paco2 34 pao2 70 site arterial", ""),  # FiO2 not known
         ("01:45 ph 7.45 paco2 34 pao2 70 site arterial\n02:02 ph 7.45 paco2 34 pao2 90 site arterial", "01:45-02:02"),
+        ("01:58 ph 7.45 paco2 34 pao2 90 site arterial\n02:20 ph 7.45 paco2 34 pao2 70 site arterial", ""),
         ("01:58 ph 7.45 paco2 34 pao2 70 site arterial\n02:20 ph 7.45 paco2 34 pao2 72 site arterial", "01:58-"),
         ("02:00 ph 7.45 paco2 34 pao2 70 site arterial\n05:00 ph 7.45 paco2 34 pao2 80 site arterial", "02:00-05:00"),
     ],
