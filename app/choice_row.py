@@ -17,18 +17,19 @@ from PySide6.QtWidgets import (
 
 
 class ChoiceRow(QWidget):
-    """`chosen(key)` when a person presses another button. Keys are plain texts, in the order given."""
+    """`chosen(key)` when a person presses another button. Keys are plain texts, in the order given. `tight`: for
+    the top line, where every pixel counts."""
 
     chosen = Signal(str)
 
-    def __init__(self, heading: str, choices: Sequence[tuple[str, str]]) -> None:
+    def __init__(self, heading: str, choices: Sequence[tuple[str, str]], *, tight: bool = False) -> None:
         super().__init__()
         self._group = QButtonGroup(self)
         self._group.setExclusive(True)
         self._keys: list[str] = []
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
-        row.setSpacing(4)
+        row.setSpacing(0 if tight else 4)
         if heading:
             label = QLabel(heading)
             label.setProperty("role", "quiet")
@@ -37,7 +38,7 @@ class ChoiceRow(QWidget):
             button = QToolButton()
             button.setText(word)
             button.setCheckable(True)
-            button.setProperty("role", "choice")
+            button.setProperty("role", "tab" if tight else "choice")
             button.setAccessibleName(f"{heading} {word}".strip())
             button.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
             self._group.addButton(button, number)

@@ -22,6 +22,7 @@ QLabel[role="display"] {{ font-size: {display}px; font-weight: 600; }}
 QLabel[role="title"] {{ font-size: {title}px; font-weight: 600; }}
 QLabel[role="emphasis"] {{ font-size: {emphasis}px; font-weight: 600; }}
 QLabel[role="strong"] {{ font-weight: 600; }}
+QFrame[banner="true"] {{ background: {wash}; border: 0; border-bottom: 2px solid {accent}; }}
 QLabel[pill="true"] {{
     background: {wash}; border: 1px solid {accent}; border-radius: {radius}px; padding: {g1}px {g2}px;
     font-weight: 600;
@@ -47,6 +48,12 @@ QPushButton[role="primary"]:hover {{ background: {support_edge}; }}
 QPushButton[role="primary"]:focus {{ border: 2px solid {ink}; }}
 QPushButton[role="primary"]:disabled {{ background: {sunken}; color: {ink_quiet}; border-color: {line}; }}
 QPushButton[role="plain"], QToolButton[role="plain"] {{ border-color: transparent; background: transparent; }}
+QToolButton[role="tab"] {{
+    border-color: transparent; background: transparent; padding: {g1}px {tab}px; min-height: {choice}px;
+}}
+QToolButton[role="tab"]:hover {{ background: {wash}; }}
+QToolButton[role="tab"]:checked {{ background: {wash}; border-color: {accent}; font-weight: 600; }}
+QToolButton[role="tab"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {tab_1}px; }}
 QPushButton[role="small"] {{ padding: {g1}px {g3}px; min-height: {choice}px; }}
 QPushButton[role="small"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
 QToolButton[role="choice"] {{
@@ -101,7 +108,7 @@ QHeaderView::section {{
 QTableCornerButton::section {{ background: {raised}; border: 0; }}
 
 QMenuBar {{ background: {ground}; border-bottom: 1px solid {line}; }}
-QMenuBar::item {{ padding: {menu}px {g3}px; background: transparent; }}
+QMenuBar::item {{ padding: {menu}px {menu_side}px; background: transparent; }}
 QMenuBar::item:selected {{ background: {wash}; }}
 QMenu {{ background: {raised}; border: 1px solid {line}; padding: {g1}px; }}
 QMenu::item {{ padding: {g2}px {g6}px {g2}px {g4}px; border-radius: {g1}px; }}
@@ -155,4 +162,5 @@ def sheet(theme: Theme) -> str:
     sizes = {name: theme.px(getattr(t, name)) for name in ("caption", "body", "emphasis", "title", "display")}
     colours = {name: getattr(c, name) for name in _SURFACES + _INKS}
     targets = {"target": theme.px(24), "choice": theme.px(20), "menu": theme.px(10)}
+    targets |= {"menu_side": theme.px(8), "tab": theme.px(5), "tab_1": theme.px(5) - 1}
     return _SHEET.format(radius=8, bar=3, **targets, **distances, **inner, **sizes, **colours)

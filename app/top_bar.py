@@ -31,6 +31,7 @@ class TopBar(QWidget):
                 ("handover", self.tr("Handover")),
                 ("statistics", self.tr("Figures")),
             ),
+            tight=True,
         )
         self.moment = QLabel()
         self.moment.setProperty("role", "strong")
@@ -50,7 +51,7 @@ class TopBar(QWidget):
         """Take another look or text size."""
         self._theme = theme
         px = theme.px
-        self._row.setContentsMargins(px(8), px(2), px(12), px(2))
+        self._row.setContentsMargins(px(4), px(2), px(8), px(2))
         self._row.setSpacing(px(8))
 
     def show_session(self, session: Session) -> None:

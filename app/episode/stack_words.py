@@ -32,6 +32,8 @@ def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
         on.record, on.figures, on.course, on.gas_unit, on.policy.leak.doubt_tidal_volume_above_L_per_min.value
     )
     end = _end(on)
+    if on.course.support.end is None and now - on.course.until <= HOUR:
+        end = max(end, now)  # the clock has run on since the figures were computed
     end = max(end, start + 30 * MINUTE)
     return StackSpec(
         zone=ZoneInfo(on.zone),
