@@ -28,10 +28,10 @@ def templates() -> Mapping[str, str]:
     Raises:
         ValueError: two catalogues name the same key.
     """
-    from app.words import exchange, findings, judgements, names, refusals, responses, surroundings
+    from app.words import exchange, findings, judgements, names, refusals, responses, surroundings, tables
 
     found: dict[str, str] = {}
-    for catalogue in (refusals, surroundings, findings, responses, judgements, names, exchange):
+    for catalogue in (refusals, surroundings, findings, responses, judgements, names, exchange, tables):
         twice = found.keys() & catalogue.TEMPLATES.keys()
         if twice:
             raise ValueError(f"message keys with two templates: {', '.join(sorted(twice))}")

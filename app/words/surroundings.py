@@ -37,10 +37,12 @@ TEMPLATES: Final[dict[str, str]] = {
     "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
         "Update the program.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
+    "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "store.backup_failed": "The backup {path} could not be written: {detail}.",
     "store.busy": "{path} is busy: another program is writing ({detail}). Try again in a moment.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",
-    "store.damaged": "[[{path}]][[!path|The store]] is damaged: {detail}. Restore the newest backup into a new store.",
+    "store.damaged":
+        "[[{path}]][[!path|The store]] is damaged: {detail}. Restore the newest backup into a new store.",
     "store.damaged_chunk": "A block of device samples is damaged. Run verify, and restore a backup.",
     "store.disk_error": "The disk failed while {path} was used: {detail}.",
     "store.disk_full": "The disk is full: nothing was recorded in {path}. Make room and try again.",

@@ -1,6 +1,6 @@
 """Every message key in the sources has a template, and every value a template needs is given by its message.
 
-Keys are found in the syntax tree: the first argument of `Message`, `refuse` and `store_error`, and any other
+Keys are found in the syntax tree: the arguments of `Message`, `refuse`, `store_error` and `unreadable`, and any other
 text that is written like a key (`room.what`) of a family that messages use.
 """
 
@@ -19,7 +19,8 @@ from core.physiology.classification import Disturbance
 from core.record.channels import SITES
 
 ROOT = Path(__file__).parents[3]
-MAKERS = {"Message", "refuse", "store_error"}
+MAKERS = {"Message": 0, "refuse": 0, "store_error": 0, "unreadable": 2}
+"""What makes a message, and which of its arguments is the key."""
 KEY = re.compile(r"[a-z][a-z0-9_]*\.[a-z][a-z0-9_]*")
 NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*")
 NAMES_OF_NUMBERS = {"policy_limits.py"}
@@ -92,9 +93,23 @@ def calls() -> Iterator[tuple[Path, ast.Call]]:
     for path in sources():
         for node in ast.walk(ast.parse(path.read_text("utf-8"))):
             if isinstance(node, ast.Call):
-                name = node.func.id if isinstance(node.func, ast.Name) else getattr(node.func, "attr", "")
-                if name in MAKERS and node.args:
+                place = MAKERS.get(name_of(node))
+                if place is not None and len(node.args) > place:
                     yield path, node
+
+
+def name_of(call: ast.Call) -> str:
+    return call.func.id if isinstance(call.func, ast.Name) else str(getattr(call.func, "attr", ""))
+
+
+def key_of(call: ast.Call) -> ast.expr:
+    return call.args[MAKERS[name_of(call)]]
+
+
+def literal_key(call: ast.Call) -> str:
+    """The key a call names, or an empty text where it is made at run time."""
+    key = key_of(call)
+    return key.value if isinstance(key, ast.Constant) and isinstance(key.value, str) else ""
 
 
 def literal_keys() -> dict[str, Path]:
@@ -107,8 +122,8 @@ def literal_keys() -> dict[str, Path]:
 
 
 def families() -> set[str]:
-    keys = {c.args[0].value for _, c in calls() if isinstance(c.args[0], ast.Constant)}
-    return {str(k).partition(".")[0] for k in keys} | {p.rstrip(".") for p in DYNAMIC} | {"undefined"}
+    keys = {literal_key(c) for _, c in calls()} - {""}
+    return {k.partition(".")[0] for k in keys} | {p.rstrip(".") for p in DYNAMIC} | {"undefined"}
 
 
 def wanted() -> dict[str, Path]:
@@ -118,7 +133,7 @@ def wanted() -> dict[str, Path]:
         if k.partition(".")[0] in known and not NOT_KEYS.fullmatch(k) and k not in LOG
         and p.name not in NAMES_OF_NUMBERS
     }  # fmt: skip
-    found |= {str(c.args[0].value): p for p, c in calls() if isinstance(c.args[0], ast.Constant)}
+    found |= {literal_key(c): p for p, c in calls() if literal_key(c)}
     for prefix, ends in DYNAMIC.items():
         found |= {prefix + end: ROOT for end in ends}
     return found
@@ -135,7 +150,7 @@ def test_no_template_is_left_over() -> None:
 
 def test_every_key_made_at_run_time_is_listed() -> None:
     for path, call in calls():
-        key = call.args[0]
+        key = key_of(call)
         if isinstance(key, ast.JoinedStr):
             start = key.values[0]
             assert isinstance(start, ast.Constant), (path, ast.unparse(call))
@@ -144,8 +159,7 @@ def test_every_key_made_at_run_time_is_listed() -> None:
 
 def given_values(call: ast.Call) -> set[str] | None:
     """The values a call names, or None where they are made elsewhere."""
-    name = call.func.id if isinstance(call.func, ast.Name) else getattr(call.func, "attr", "")
-    if name != "Message":
+    if name_of(call) != "Message":
         return None if any(k.arg is None for k in call.keywords) else {str(k.arg) for k in call.keywords}
     if len(call.args) == 1 and not call.keywords:
         return set()
@@ -158,11 +172,11 @@ def given_values(call: ast.Call) -> set[str] | None:
 def test_no_template_needs_a_value_that_its_message_does_not_give() -> None:
     seen = 0
     for path, call in calls():
-        key, given = call.args[0], given_values(call)
-        if isinstance(key, ast.Constant) and given is not None and key.value in templates():
+        key, given = literal_key(call), given_values(call)
+        if given is not None and key in templates():
             seen += 1
-            needed = fields(templates()[str(key.value)])
-            assert needed <= given, (str(path.relative_to(ROOT)), key.value, needed - given)
+            needed = fields(templates()[key])
+            assert needed <= given, (str(path.relative_to(ROOT)), key, needed - given)
     assert seen > 100
 
 
