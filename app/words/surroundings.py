@@ -30,6 +30,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "handover.too_long": "A shift of {hours:0} h is too long: at most {accepted} h are accepted.",
     "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
     "intake.refused": "{path} was not taken: {rows} row(s) refused. Accepted: {accepted}.",
+    "intake.unknown_source": "Nothing was taken in as '{value}'. Accepted: {accepted}.",
+    "intake.withdrawn_already": "{path} was withdrawn already. Accepted: {accepted}.",
     "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}). "
         "Put the key file of a backup in its place.",
     "key.envelope_missing": "The key file {path} that belongs beside the store is not there. "
@@ -38,7 +40,6 @@ TEMPLATES: Final[dict[str, str]] = {
         "Update the program.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
-    "store.backup_failed": "The backup {path} could not be written: {detail}.",
     "store.busy": "{path} is busy: another program is writing ({detail}). Try again in a moment.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",
     "store.damaged":

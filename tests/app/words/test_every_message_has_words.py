@@ -25,9 +25,9 @@ KEY = re.compile(r"[a-z][a-z0-9_]*\.[a-z][a-z0-9_]*")
 NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*")
 NAMES_OF_NUMBERS = {"policy_limits.py"}
 """Modules that name numbers of the policy by their path, written like keys; their messages are calls."""
-LOG = {"flag.transitions", "entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo",
-       "episode.begin"}  # fmt: skip
-"""Names of operations in the ledger, written like keys."""
+OPERATIONS = {"entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo", "intake.withdraw"}
+"""Names of operations in the ledger, written like keys; those given by name are found by `operations`."""
+
 
 POLICY = shipped_policy()
 
@@ -121,16 +121,26 @@ def literal_keys() -> dict[str, Path]:
     return found
 
 
+def operations() -> set[str]:
+    """What the ledger calls its batches: texts given as `operation`."""
+    found = set()
+    for path in sources():
+        for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+            if isinstance(node, ast.keyword) and node.arg == "operation" and isinstance(node.value, ast.Constant):
+                found.add(str(node.value.value))
+    return found
+
+
 def families() -> set[str]:
     keys = {literal_key(c) for _, c in calls()} - {""}
     return {k.partition(".")[0] for k in keys} | {p.rstrip(".") for p in DYNAMIC} | {"undefined"}
 
 
 def wanted() -> dict[str, Path]:
-    known = families()
+    known, names = families(), OPERATIONS | operations()
     found = {
         k: p for k, p in literal_keys().items()
-        if k.partition(".")[0] in known and not NOT_KEYS.fullmatch(k) and k not in LOG
+        if k.partition(".")[0] in known and not NOT_KEYS.fullmatch(k) and k not in names
         and p.name not in NAMES_OF_NUMBERS
     }  # fmt: skip
     found |= {literal_key(c): p for p, c in calls() if literal_key(c)}
