@@ -42,6 +42,11 @@ class Deed:
     """A line stands above it in the menu."""
 
     @property
+    def records(self) -> bool:
+        """Whether it writes into the record; greyed while the past is looked at."""
+        return (self.menu == "log" and self.key != "focus_strip") or self.key == "take_in"
+
+    @property
     def slot(self) -> str:
         """The method that carries it out."""
         return f"do_{self.key}"
@@ -56,6 +61,7 @@ MENUS: Final = (
     ("log", QT_TRANSLATE_NOOP("action", "&Log")),
     ("ward", QT_TRANSLATE_NOOP("action", "&Ward")),
     ("episode", QT_TRANSLATE_NOOP("action", "&Episode")),
+    ("review", QT_TRANSLATE_NOOP("action", "&Review")),
     ("view", QT_TRANSLATE_NOOP("action", "&View")),
     ("help", QT_TRANSLATE_NOOP("action", "&Help")),
 )
@@ -268,6 +274,14 @@ DEEDS: Final = (
         needs_episode=True,
     ),
     Deed(
+        "show_map",
+        "episode",
+        QT_TRANSLATE_NOOP("action", "Acid-base map"),
+        ("Ctrl+6",),
+        QT_TRANSLATE_NOOP("action", "The gases as a path over pH and PaCO2, each with its class and why."),
+        needs_episode=True,
+    ),
+    Deed(
         "next_episode",
         "episode",
         QT_TRANSLATE_NOOP("action", "Next episode"),
@@ -323,6 +337,70 @@ DEEDS: Final = (
         ("Ctrl+Left",),
         QT_TRANSLATE_NOOP("action", "Put the crosshair on the start or settings change before."),
         needs_episode=True,
+    ),
+    Deed(
+        "look_back",
+        "review",
+        QT_TRANSLATE_NOOP("action", "As known at..."),
+        ("Ctrl+J",),
+        QT_TRANSLATE_NOOP("action", "See every screen as the store knew it then; again to go back to now."),
+    ),
+    Deed(
+        "known_before",
+        "review",
+        QT_TRANSLATE_NOOP("action", "Recording before"),
+        ("Alt+Shift+Left",),
+        QT_TRANSLATE_NOOP("action", "See what was known when something was last recorded before."),
+    ),
+    Deed(
+        "known_after",
+        "review",
+        QT_TRANSLATE_NOOP("action", "Recording after"),
+        ("Alt+Shift+Right",),
+        QT_TRANSLATE_NOOP("action", "See what was known when something was next recorded."),
+    ),
+    Deed(
+        "known_back",
+        "review",
+        QT_TRANSLATE_NOOP("action", "15 minutes back"),
+        ("Alt+Left",),
+        QT_TRANSLATE_NOOP("action", "See what was known a quarter of an hour earlier."),
+    ),
+    Deed(
+        "known_forward",
+        "review",
+        QT_TRANSLATE_NOOP("action", "15 minutes on"),
+        ("Alt+Right",),
+        QT_TRANSLATE_NOOP("action", "See what was known a quarter of an hour later."),
+    ),
+    Deed(
+        "known_live",
+        "review",
+        QT_TRANSLATE_NOOP("action", "Back to now"),
+        ("Alt+Home",),
+        QT_TRANSLATE_NOOP("action", "Follow the clock again, with all that is recorded."),
+    ),
+    Deed(
+        "came_later",
+        "review",
+        QT_TRANSLATE_NOOP("action", "What came later..."),
+        ("Ctrl+Shift+L",),
+        QT_TRANSLATE_NOOP("action", "Late entries and later corrections of the moment that is looked at."),
+    ),
+    Deed(
+        "show_statistics",
+        "review",
+        QT_TRANSLATE_NOOP("action", "Shift figures"),
+        ("Ctrl+5",),
+        QT_TRANSLATE_NOOP("action", "Starts, times, gases, hours, responses and flags of the ward over a span."),
+        parted=True,
+    ),
+    Deed(
+        "save_statistics",
+        "review",
+        QT_TRANSLATE_NOOP("action", "Save shift figures as CSV..."),
+        ("Ctrl+Shift+F",),
+        QT_TRANSLATE_NOOP("action", "Write the shift figures as a table that spreadsheets read."),
     ),
     Deed(
         "explain",

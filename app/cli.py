@@ -82,6 +82,13 @@ def _showing(command: Command) -> None:
     _moments(figures)
 
 
+    statistics = command("statistics", "shift figures of the ward over any span, as text, CSV or JSON")
+    statistics.add_argument("--from", dest="start", type=moment, required=True, metavar="T", help="the span's start")
+    statistics.add_argument("--to", dest="end", type=moment, required=True, metavar="T", help="the span's end")
+    statistics.add_argument("--csv", type=Path, metavar="FILE", help="write a table; left out: text on the screen")
+    statistics.add_argument("--as-known-at", type=moment, metavar="T", help="only what was recorded by then")
+
+
 def _recording(command: Command) -> None:
     intake = command("intake", "take log files (CSV) into the store, each whole or not at all")
     intake.add_argument("files", nargs="+", type=Path, metavar="FILE")

@@ -14,10 +14,12 @@ if TYPE_CHECKING:
     from app.compare_view import CompareView
     from app.episode_view import EpisodeView
     from app.handover_view import HandoverView
+    from app.map_view import MapView
+    from app.statistics_view import StatisticsView
 
 
 class Pages(QStackedWidget):
-    """Ward, episode, compare and handover. `made(name)` when a page has come to be and wants its wires."""
+    """All pages of an open store. `made(name)` when one has come to be and wants its wires."""
 
     made = Signal(str)
 
@@ -29,6 +31,8 @@ class Pages(QStackedWidget):
         self._episode: EpisodeView | None = None
         self._compare: CompareView | None = None
         self._handover: HandoverView | None = None
+        self._map: MapView | None = None
+        self._statistics: StatisticsView | None = None
 
     @property
     def episode(self) -> EpisodeView:
@@ -61,6 +65,26 @@ class Pages(QStackedWidget):
         return self._handover
 
     @property
+    def map(self) -> MapView:
+        """The acid-base map."""
+        if self._map is None:
+            from app.map_view import MapView
+
+            self._map = MapView(self._theme)
+            self._added(self._map, "map")
+        return self._map
+
+    @property
+    def statistics(self) -> StatisticsView:
+        """The shift figures."""
+        if self._statistics is None:
+            from app.statistics_view import StatisticsView
+
+            self._statistics = StatisticsView(self._theme)
+            self._added(self._statistics, "statistics")
+        return self._statistics
+
+    @property
     def name(self) -> str:
         """The name of the page that shows."""
         names = {
@@ -68,6 +92,8 @@ class Pages(QStackedWidget):
             self._episode: "episode",
             self._compare: "compare",
             self._handover: "handover",
+            self._map: "map",
+            self._statistics: "statistics",
         }
         return names.get(self.currentWidget(), "")  # type: ignore[call-overload, no-any-return]
 
@@ -83,7 +109,7 @@ class Pages(QStackedWidget):
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size in every page that there is."""
         self._theme = theme
-        for name in ("ward", "episode", "compare", "handover"):
+        for name in ("ward", "episode", "map", "compare", "handover", "statistics"):
             if self.has(name):
                 self.page(name).set_theme(theme)  # type: ignore[attr-defined]
 

@@ -157,6 +157,13 @@ class SessionModel(QObject):
         """See only what had been recorded by a moment, or all again."""
         self._become(What.AS_KNOWN_AT, as_known_at=at)
 
+    def look_back(self, at: Instant | None) -> None:
+        """See a moment as the store knew it then: figures as of it and as known at it. None: live again."""
+        made = replace(self._session, as_of=at, as_known_at=at)
+        if made != self._session:
+            self._session = made
+            self.changed.emit(Changed(frozenset({What.AS_OF, What.AS_KNOWN_AT})))
+
     def set_zone(self, zone: str) -> None:
         """Show and read wall-clock times in a zone."""
         self._become(What.ZONE, zone=zone)

@@ -159,4 +159,8 @@ def table_of_page(window: MainWindow) -> Table | None:
         return table_of_stack(pages.episode.stack.spec)
     if pages.name == "compare" and pages.compare.chart.comparison is not None:
         return table_of_comparison(pages.compare.chart.comparison)
+    if pages.name == "map":
+        return pages.map.as_table()
+    if pages.name == "statistics":
+        return pages.statistics.as_table()
     return None

@@ -16,6 +16,7 @@ from app.episode_feed import EpisodeFeed
 from app.episode_shown import EpisodeOnScreen
 from app.failure import Failure
 from app.first_page import FirstPage
+from app.known_strip import KnownStrip
 from app.log_strip import LogStrip
 from app.pages import Pages
 from app.preferences import Preferences
@@ -64,6 +65,8 @@ class MainWindow(QMainWindow):
         self._no_corner = QWidget(self)
         self._no_corner.hide()
         self.progress = ProgressLine(self)
+        self.known = KnownStrip(self.theme)
+        self._connect_known()
         self._middle = QWidget()
         self._column = QVBoxLayout(self._middle)
         self._column.setContentsMargins(0, 0, 0, 0)
@@ -125,6 +128,12 @@ class MainWindow(QMainWindow):
         session = self.opened.model.session
         return reader_at(session.zone, self.preferences.gas_unit, session.moment())
 
+    @property
+    def plain_reader(self) -> Reader:
+        """For whom files are written: every time with its date."""
+        zone = self.opened.model.session.zone if self.opened is not None else "UTC"
+        return Reader(zone, self.preferences.gas_unit)
+
     def prefer(self, **values: object) -> None:
         """Change preferences, keep them, and show what they change."""
         before = self.preferences
@@ -143,6 +152,7 @@ class MainWindow(QMainWindow):
         if isinstance(app, QApplication):
             apply_theme(app, self.theme)
         self.top.set_theme(self.theme)
+        self.known.set_theme(self.theme)
         if self.opened is not None:
             self.opened.pages.set_theme(self.theme)
             self.opened.strip.set_theme(self.theme)
@@ -155,7 +165,7 @@ class MainWindow(QMainWindow):
         if self.model is None:
             return
         bar = self.menuBar()
-        menus = sum(bar.actionGeometry(action).width() for action in bar.actions()) + self.theme.px(24)
+        menus = sum(bar.actionGeometry(action).width() for action in bar.actions()) + self.theme.px(20)
         fits = menus + self.top.sizeHint().width() <= self.width()
         if fits and bar.cornerWidget() is not self.top:
             bar.setCornerWidget(self.top)
@@ -173,9 +183,10 @@ class MainWindow(QMainWindow):
         self.actions_by_key["pressure_unit"].setChecked(self.preferences.gas_unit == "kPa")
         has_store = self.model is not None
         has_episode = has_store and self.model is not None and self.model.session.selection is not None
+        looks_back = self.opened is not None and not self.opened.model.session.is_live
         for deed in DEEDS:
             allowed = (has_store or not deed.needs_store) and (has_episode or not deed.needs_episode)
-            self.actions_by_key[deed.key].setEnabled(allowed)
+            self.actions_by_key[deed.key].setEnabled(allowed and not (looks_back and deed.records))
 
     # what is shown
 
@@ -204,6 +215,7 @@ class MainWindow(QMainWindow):
         feed = WardFeed(model, self.preferences, self)
         episode_feed = EpisodeFeed(model, feed, self.preferences.gas_unit, self)
         self.opened = Opened(model, feed, episode_feed, Pages(self.theme), LogStrip(self.theme, model))
+        self._column.addWidget(self.known)
         self._column.addWidget(self.opened.pages, 1)
         self._column.addWidget(self.progress)
         foot = QVBoxLayout()
@@ -230,6 +242,14 @@ class MainWindow(QMainWindow):
         o.pages.made.connect(self._page_made)
         o.strip.left.connect(self._focus_page)
 
+    def _connect_known(self) -> None:
+        review = self.doers.review
+        self.known.step_wanted.connect(review.step)
+        self.known.recording_wanted.connect(review.look_beside)
+        self.known.moment_typed.connect(review.look_at_typed)
+        self.known.live_wanted.connect(review.do_known_live)
+        self.known.later_wanted.connect(review.do_came_later)
+
     def _page_made(self, name: str) -> None:
         pages = self._now_open().pages
         if name == "episode":
@@ -242,26 +262,41 @@ class MainWindow(QMainWindow):
         elif name == "compare":
             pages.compare.back.connect(self._to_ward)
             pages.compare.opened.connect(self.open_episode)
+        elif name == "map":
+            pages.map.back.connect(self._to_ward)
+            pages.map.explain_wanted.connect(self.doers.view.explain_figure)
+        elif name == "statistics":
+            pages.statistics.back.connect(self._to_ward)
+            pages.statistics.span_wanted.connect(self.doers.review.count_shift)
+            pages.statistics.save_wanted.connect(self.actions_by_key["save_statistics"].trigger)
 
     def show_page(self, name: str) -> None:
         """Show a page and give it the focus."""
         o = self._now_open()
-        if name == "episode" and o.model.session.selection is None:
+        if name in ("episode", "map") and o.model.session.selection is None:
             self.top.pages.choose(o.pages.name)
             return
         o.pages.setCurrentWidget(o.pages.page(name))
         self.top.pages.choose(name)
-        if name == "episode":
+        self._fill_page(name)
+        self._focus_page()
+
+    def _fill_page(self, name: str) -> None:
+        """Give a page what it shows; the ward has it already."""
+        o = self._now_open()
+        if name in ("episode", "map"):
             o.episode_feed.show_selection()
         elif name == "handover":
             self.doers.ward.show_handover_text()
         elif name == "compare":
             o.pages.compare.show_ward(o.feed.content(), o.feed.answers)
-        self._focus_page()
+        elif name == "statistics":
+            self.doers.review.refresh_statistics()
 
     def _focus_page(self) -> None:
         pages = self._now_open().pages
-        focus = {"ward": "lanes", "episode": "stack", "handover": "text", "compare": "list"}
+        focus = {"ward": "lanes", "episode": "stack", "handover": "text", "compare": "list", "map": "map",
+                 "statistics": "table"}  # fmt: skip
         getattr(pages.page(pages.name), focus[pages.name]).setFocus()
 
     def _to_ward(self) -> None:
@@ -291,10 +326,23 @@ class MainWindow(QMainWindow):
             self._selection_changed()
         if changed.touches(What.CLOCK, What.AS_OF, What.AS_KNOWN_AT, What.PERSON, What.ZONE, What.STORE):
             self._tell_session()
+        if changed.touches(What.AS_OF, What.AS_KNOWN_AT):
+            self._moment_changed()
+
+    def _moment_changed(self) -> None:
+        """Another moment is looked at: nothing can be logged into the past, and no screen may stay behind."""
+        o = self._now_open()
+        o.strip.set_closed("" if o.model.session.is_live else self.tr(
+            "Looking back: nothing can be logged. Alt+Home goes back to now."))  # fmt: skip
+        self._set_ticks()
+        self.doers.review.count_later()
+        if o.pages.name in ("handover", "statistics"):
+            self._fill_page(o.pages.name)
 
     def _tell_session(self) -> None:
         session = self._now_open().model.session
         self.top.show_session(session)
+        self.known.show_session(session)
         self._place_top()
         self.setWindowTitle(self.tr("{store} - Luffmark").format(store=session.store_path.name))
 
@@ -325,6 +373,8 @@ class MainWindow(QMainWindow):
         o = self._now_open()
         if o.pages.name == "episode":
             o.pages.episode.show_episode(on, o.model.session.moment())
+        elif o.pages.name == "map":
+            o.pages.map.show_episode(on)
 
     def show_failure(self, failure: Failure) -> None:
         """Say in the strip what did not succeed; a store that wants its passphrase asks for it."""
@@ -367,7 +417,7 @@ def _let_go(item: QLayoutItem | None) -> None:
     if item is None:
         return
     widget, layout = item.widget(), item.layout()
-    if isinstance(widget, TopBar | ProgressLine):
+    if isinstance(widget, TopBar | ProgressLine | KnownStrip):
         widget.hide()
     elif widget is not None:
         widget.hide()

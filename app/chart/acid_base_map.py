@@ -18,6 +18,7 @@ class AcidBaseMap(QWidget):
     """Draws a MapSpec. Left and right choose a gas, Enter opens it."""
 
     hovered = Signal(str)
+    gas_chosen = Signal(object)
     gas_activated = Signal(object)
 
     def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
@@ -191,7 +192,8 @@ class AcidBaseMap(QWidget):
         c, px = self.theme.colours, self.theme.px
         points = self._gas_points(plot)
         painter.setPen(solid_pen(c.ink, 1.4))
-        for one, other in pairwise(points):
+        path = [p for p, gas in zip(points, self.spec.gases, strict=True) if gas.joined]
+        for one, other in pairwise(path):
             _arrow(painter, one, other, px(10))
         taken = [QRectF(p.x() - px(9), p.y() - px(9), px(18), px(18)) for p in points]
         painter.setFont(self.theme.font(self.theme.type.caption, bold=True))
@@ -203,7 +205,7 @@ class AcidBaseMap(QWidget):
                 painter.setPen(solid_pen(c.accent, 2))
                 painter.setBrush(Qt.BrushStyle.NoBrush)
                 painter.drawEllipse(at, px(13), px(13))
-            self._draw_number(painter, plot, str(gas.number), at, taken)
+            self._draw_number(painter, plot, f"{gas.number} {gas.mark}".rstrip(), at, taken)
 
     def _draw_number(self, painter: QPainter, plot: QRectF, word: str, at: QPointF, taken: list[QRectF]) -> None:
         """The number beside its gas, on the first free side."""
@@ -300,11 +302,23 @@ class AcidBaseMap(QWidget):
         else:
             super().keyPressEvent(event)
 
+    def choose(self, number: int) -> None:
+        """Choose the gas of that number without telling; one that is not there chooses none."""
+        places = [n for n, gas in enumerate(self.spec.gases if self.spec else ()) if gas.number == number]
+        self._chosen = places[0] if places else None
+        self.update()
+
+    @property
+    def chosen(self) -> MapGas | None:
+        """The gas that is chosen."""
+        return None if self.spec is None or self._chosen is None else self.spec.gases[self._chosen]
+
     def _choose(self, place: int) -> None:
         assert self.spec is not None
         self._chosen = place
         self.setAccessibleDescription(self.spec.gases[place].word)
         self.hovered.emit(self.spec.gases[place].word)
+        self.gas_chosen.emit(self.spec.gases[place])
         self.update()
 
 

@@ -316,7 +316,10 @@ class LanesSpec:
 
 @dataclass(frozen=True, slots=True)
 class MapGas:
-    """A gas on the acid-base map; the path joins them in order."""
+    """A gas on the acid-base map; the path joins them in order, but for those with `joined` False.
+
+    mark      a short word beside the number, e.g. `venous`
+    """
 
     number: int
     at: int
@@ -327,6 +330,8 @@ class MapGas:
     word: str = ""
     doubtful: bool = False
     payload: Any = None
+    mark: str = ""
+    joined: bool = True
 
 
 @dataclass(frozen=True, slots=True, eq=False)

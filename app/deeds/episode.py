@@ -15,6 +15,10 @@ class EpisodeDeeds(Doer):
         """Ribbon, panels, flags, due items and levers of the selected episode."""
         self.window.show_page("episode")
 
+    def do_show_map(self) -> None:
+        """The gases of the selected episode on the acid-base map."""
+        self.window.show_page("map")
+
     def do_next_episode(self) -> None:
         """The next in the ward's order."""
         self._step(1)

@@ -28,6 +28,12 @@ class ViewDeeds(Doer):
 
         ExplainDialog(explanation, self.window.theme, self.window).open()
 
+    def explain_figure(self, figure: object) -> None:
+        """Show how a figure came about."""
+        found = self.of_payload(figure)
+        if found is not None:
+            self.explain(found)
+
     def _of_focus(self) -> Explanation | None:
         from app.fact import Fact
 
@@ -43,6 +49,9 @@ class ViewDeeds(Doer):
             return next(
                 (f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None
             )
+        if self.pages.name == "map":
+            gas = self.pages.map.map.chosen
+            return self.of_payload(gas.payload.gas) if gas is not None else None
         item = self.pages.ward.lanes.selected_item
         if item is not None:
             return self.of_payload(item.payload)

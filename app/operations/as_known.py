@@ -29,7 +29,7 @@ CameLater = Mapping[str, tuple[Hindsight, ...]]
 
 @dataclass(frozen=True, slots=True)
 class LaterRequest:
-    """What came later than `known_at`, of episodes (None: every one known by then or since)."""
+    """What came later than `known_at`, of episodes (None: every one that anything was recorded for since)."""
 
     known_at: Instant
     episodes: tuple[str, ...] | None = None
@@ -48,7 +48,7 @@ def came_later(store: Store, who: str, now: Instant, request: LaterRequest) -> O
         RecordError: `episode.unknown`.
     """
     head = store.head_known_at(request.known_at)
-    keys = store.episode_keys() if request.episodes is None else request.episodes
+    keys = sorted(store.changes_since(head).episodes) if request.episodes is None else request.episodes
     found: dict[str, tuple[Hindsight, ...]] = {}
     for number, key in enumerate(keys):
         report(number, len(keys))

@@ -10,6 +10,7 @@ from app.deeds.episode import EpisodeDeeds
 from app.deeds.file import FileDeeds
 from app.deeds.help import HelpDeeds
 from app.deeds.log import LogDeeds
+from app.deeds.review import ReviewDeeds
 from app.deeds.view import ViewDeeds
 from app.deeds.ward import WardDeeds
 
@@ -18,6 +19,7 @@ SERVERS = {
     "log": LogDeeds,
     "ward": WardDeeds,
     "episode": EpisodeDeeds,
+    "review": ReviewDeeds,
     "view": ViewDeeds,
     "help": HelpDeeds,
 }

@@ -1,0 +1,181 @@
+"""Looking back and counting: the night as it was known, shift figures, files for others."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from PySide6.QtWidgets import QFileDialog
+
+from app.deeds.doer import Doer
+from app.failure import Failure, failure_of
+from app.operations.outcome import Outcome
+from app.words import sentence
+from core.record.instant import MINUTE, Instant
+from core.record.message import RecordError
+
+if TYPE_CHECKING:
+    from app.operations.as_known import Beside, CameLater
+    from core.figures.ward_statistics import WardStatistics
+
+STEP_MIN = 15
+
+
+class ReviewDeeds(Doer):
+    """Serves the menu Review."""
+
+    _direction = 0
+    _known: CameLater | None = None
+    _known_at: Instant = 0
+    _span: tuple[Instant, Instant] | None = None
+    _to_window = True
+
+    # as it was known
+
+    def do_look_back(self) -> None:
+        """Begin to look back, at the newest recording; or go live again."""
+        if self.model.session.is_live:
+            self.look_beside(-1)
+        else:
+            self.model.look_back(None)
+
+    def do_known_back(self) -> None:
+        """A quarter of an hour back."""
+        self.step(-STEP_MIN)
+
+    def do_known_forward(self) -> None:
+        """A quarter of an hour on."""
+        self.step(STEP_MIN)
+
+    def do_known_before(self) -> None:
+        """To the recording before."""
+        self.look_beside(-1)
+
+    def do_known_after(self) -> None:
+        """To the recording after."""
+        self.look_beside(1)
+
+    def do_known_live(self) -> None:
+        """Live again."""
+        self.model.look_back(None)
+
+    def step(self, minutes: int) -> None:
+        """So many minutes on or back; past now is live."""
+        self.look_at(self.model.session.moment() + minutes * MINUTE)
+
+    def look_at(self, at: Instant) -> None:
+        """See a moment as it was known then; one that is not past is live."""
+        self.model.look_back(at if at < self.model.session.now() else None)
+
+    def look_beside(self, direction: int) -> None:
+        """See the recording before or after the moment that is looked at."""
+        from app.operations import as_known
+
+        self._direction = direction
+        self.model.ask(as_known.beside, self.model.session.moment(), done=self._beside, subject="beside")
+
+    def _beside(self, outcome: Outcome[Beside]) -> None:
+        found = outcome.value.before if self._direction < 0 else outcome.value.after
+        if found is not None:
+            self.look_at(found)
+        elif self._direction > 0:
+            self.model.look_back(None)
+
+    def look_at_typed(self, text: str) -> None:
+        """See the time of day that was typed, the newest one that is past."""
+        from core.record.local_time import latest_wall_time
+
+        hour, _, minute = text.strip().replace(".", ":").partition(":")
+        session = self.model.session
+        try:
+            if not (hour.isdigit() and minute.isdigit()):
+                hour, minute = "99", "99"
+            self.look_at(latest_wall_time(int(hour), int(minute), now=session.now(), zone=session.zone))
+        except RecordError as error:
+            self.window.known.say(sentence(error.message, self.window.reader))
+
+    def count_later(self) -> None:
+        """Ask how much came later than the moment that is looked at."""
+        from app.operations import as_known
+
+        at = self.model.session.as_known_at
+        if at is not None:
+            self._known_at = at
+            self.model.ask(as_known.came_later, as_known.LaterRequest(at), done=self._counted, subject="came later")
+
+    def _counted(self, outcome: Outcome[CameLater]) -> None:
+        self._known = outcome.value
+        self.window.known.show_later(sum(len(told) for told in outcome.value.values()))
+
+    def do_came_later(self) -> None:
+        """List what came later than the moment that is looked at."""
+        if self._known is None or self.model.session.as_known_at is None:
+            self.window.say(self.tr("The window is live: nothing can have come later."))
+            return
+        from app.dialogs.table import TableDialog
+        from app.later_words import later_table
+
+        answers = self.window.feed.answers if self.window.feed is not None else {}
+        labels = {key: a.figures.label for key, a in answers.items()}
+        table = later_table(self._known, labels, self._known_at, self.window.reader)
+        TableDialog(table, self.window.theme, self.window).open()
+
+    # shift figures
+
+    def do_show_statistics(self) -> None:
+        """The shift figures of the ward."""
+        self.window.show_page("statistics")
+
+    def count_shift(self, start: Instant | None = None, end: Instant | None = None) -> None:
+        """Count a span, or the shift that is looked at."""
+        from app.operations import statistics
+
+        shift, session = self.window.shift(), self.model.session
+        self._span = None if start is None or end is None else (start, end)
+        begin, stop = self._span or (shift.start, shift.end)
+        stop = min(stop, session.moment())
+        self.pages.statistics.say(self.tr("Counting..."))
+        request = statistics.StatisticsRequest(begin, stop, session.as_known_at)
+        self.model.ask(statistics.of_ward, request, done=self._figures, failed=self._no_figures, subject="statistics")
+
+    def refresh_statistics(self) -> None:
+        """Count again what is shown: something was recorded, or another moment is looked at."""
+        self.count_shift(*(self._span or (None, None)))
+
+    def _figures(self, outcome: Outcome[WardStatistics]) -> None:
+        self.pages.statistics.show_figures(outcome.value, self.window.plain_reader)
+
+    def _no_figures(self, failure: Failure) -> None:
+        self.pages.statistics.say(sentence(failure.message, self.window.reader))
+
+    def do_save_statistics(self) -> None:
+        """Ask where, write the shift figures as CSV."""
+        from app.statistics.measures import as_csv
+
+        self.window.show_page("statistics")
+        found = self.pages.statistics.found
+        if found is None:
+            self.window.say(self.tr("The shift figures are still being counted."))
+            return
+        data = as_csv(found, self.window.plain_reader).encode("utf-8")
+        self._ask_and_write(self.tr("Save shift figures"), "shift-figures.csv", "CSV (*.csv)", data)
+
+    def _ask_and_write(self, title: str, name: str, kinds: str, data: bytes) -> None:
+        chosen, _ = QFileDialog.getSaveFileName(self.window, title, str(Path.home() / name), kinds)
+        if chosen:
+            self.write(Path(chosen), data)
+
+    def write(self, path: Path, data: bytes) -> None:
+        """Write a file whole, and say so or say why not."""
+        from app.whole_file import write_whole
+
+        self._try(path, lambda: write_whole(path, data))
+
+    def _try(self, path: Path, work: Callable[[], object]) -> None:
+        try:
+            work()
+        except OSError as error:
+            self.window.show_failure(failure_of(error))
+            return
+        self.window.say(self.tr("{path} was written.").format(path=path))
