@@ -66,9 +66,10 @@ def _check_opens(path: Path, key: bytes | None) -> None:
 
 def _sync(path: Path) -> None:
     """Ask the disk to keep it. Windows cannot sync a folder and does not need to."""
-    if path.is_dir() and os.name == "nt":
+    folder = path.is_dir()
+    if folder and os.name == "nt":
         return
-    descriptor = os.open(path, os.O_RDONLY)
+    descriptor = os.open(path, os.O_RDONLY if folder else os.O_RDWR)
     try:
         os.fsync(descriptor)
     finally:

@@ -67,4 +67,5 @@ def _windows_share_kind(full: str) -> str:
 
 def can_write(path: Path) -> bool:
     """Whether both the store's file and its folder take writing (the journal needs the folder)."""
-    return os.access(path, os.W_OK) and os.access(path.parent, os.W_OK)
+    as_now = os.access in os.supports_effective_ids
+    return all(os.access(p, os.W_OK, effective_ids=as_now) for p in (path, path.parent))

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import zlib
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 
@@ -109,7 +110,7 @@ class SampleSpool:
             t, v, lines = self._without_repeats(key, *series.in_order())
             at = 0
             for block in hour_blocks(t, v, series.decimals):
-                held = lines[at : at + block.n].tobytes()
+                held = zlib.compress(np.diff(lines[at : at + block.n], prepend=np.int32(0)).tobytes(), 1)
                 series.packed.setdefault(block.t0 // HOUR, []).append((block, held))
                 at += block.n
             series.clear()
@@ -150,6 +151,7 @@ class SampleSpool:
             t, v, _decimals = decode(block.blob, block.t0)
             merged.t.append(t)
             merged.v.append(v)
-            merged.lines.append(np.frombuffer(held, np.int32))
+            steps = np.frombuffer(zlib.decompress(held), np.int32)
+            merged.lines.append(np.cumsum(steps, dtype=np.int32))
         t, v, _lines = self._without_repeats(key, *merged.in_order())
         yield from hour_blocks(t, v, decimals)

@@ -15,7 +15,7 @@ from core.record.message import RecordError
 from storage.intake.log_csv import read_log_csv
 from storage.keys import envelope_path
 from storage.store import Store, StoreError
-from tests.support.flips import NOW, SECRET, filled, outcomes, read_all
+from tests.support.flips import NOW, SECRET, filled, mutated, outcomes, read_all
 
 pytestmark = [pytest.mark.soak, pytest.mark.timeout(7200)]
 STEP = int(os.environ.get("LUFF_FLIP_STEP", "61"))
@@ -31,28 +31,6 @@ def test_flipped_bytes(tmp_path: Path, encrypted: bool, capsys: pytest.CaptureFi
     assert "wrong" not in found, found["wrong"]
     if encrypted:
         assert "same" not in found, found["same"]
-
-
-def mutated(sound: bytes, chance: random.Random) -> bytes:
-    """A file that time, a bad cable or an enemy changed."""
-    data = bytearray(sound)
-    for _ in range(chance.randint(1, 4)):
-        at, length = chance.randrange(len(data) + 1), chance.randint(1, 4096)
-        kind = chance.randrange(5)
-        if kind == 0:
-            del data[at:]
-        elif kind == 1:
-            data[at : at + length] = chance.randbytes(length)
-        elif kind == 2:
-            data[at : at + 2] = chance.choice(
-                [b"\x00\x00", b"\xff\xff", b"\x7f\xff", b"\x80\x00", b'"\n', b",,"]
-            )
-        elif kind == 3:
-            data[at:at] = data[at : at + length]
-        else:
-            del data[at : at + length]
-        data = data or bytearray(b"\x00")
-    return bytes(data)
 
 
 def test_mutated_stores_open_or_are_refused(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

@@ -13,7 +13,7 @@ from storage.keys import Cost
 from storage.store import Store, StoreError
 from tests.storage.conftest import NOW
 from tests.support.ended_early import acknowledged, assert_all_there, kill_while_logging, start
-from tests.support.flips import SECRET, filled, outcomes
+from tests.support.flips import SECRET, filled, mutated, outcomes, read_all
 
 posix = pytest.mark.skipif(sys.platform == "win32", reason="ends and limits programs as POSIX does")
 
@@ -68,3 +68,28 @@ def test_a_file_removed_under_the_program_is_said(tmp_path: Path) -> None:
         (tmp_path / "other.luff").rename(path)
         with pytest.raises(StoreError, match=r"store.file_gone"):
             store.append([entry], by="AB", operation="log", now=NOW)
+
+
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_mutated_stores_open_or_are_refused(tmp_path: Path, encrypted: bool) -> None:
+    chance = random.Random(23)
+    sound = filled(tmp_path / "ward.luff", encrypted=encrypted).read_bytes()
+    keys: set[str] = set()
+    for _ in range(40):
+        (tmp_path / "ward.luff").write_bytes(mutated(sound, chance))
+        try:
+            with Store.open(tmp_path / "ward.luff", passphrase=SECRET) as store:
+                store.verify()
+                read_all(store)
+        except StoreError as error:  # any other error fails the test
+            keys.add(error.message.key)
+        for end in ("-wal", "-shm"):
+            (tmp_path / f"ward.luff{end}").unlink(missing_ok=True)
+    assert "store.damaged" in keys
+    assert keys <= TOLD
+
+
+TOLD = {
+    "store.damaged", "store.damaged_chunk", "store.not_a_store", "store.disk_error", "store.cannot_open",
+    "store.failed", "document.damaged", "key.envelope_missing",
+}  # fmt: skip

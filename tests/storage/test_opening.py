@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import os
+import shutil
+import tempfile
 from collections.abc import Callable
 from pathlib import Path
 
@@ -65,18 +67,40 @@ def test_a_place_that_takes_no_writing_opens_for_reading_and_says_so(
             reader.append([rr()], by="AB", operation="log", now=NOW)
 
 
-@pytest.mark.skipif(not hasattr(os, "geteuid") or os.geteuid() == 0, reason="root may write anywhere")
+@pytest.mark.skipif(not hasattr(os, "seteuid"), reason="rights of folders as POSIX has them")
 def test_a_read_only_folder(store: Store) -> None:
     store.append([rr()], by="AB", operation="log", now=NOW)
     store.close()
-    os.chmod(store.path, 0o400)
-    os.chmod(store.path.parent, 0o500)
-    try:
-        with Store.open(store.path) as reader:
-            assert reader.read_only
-            assert len(reader.entries("E1")) == 1
-    finally:
-        os.chmod(store.path.parent, 0o700)
+    with tempfile.TemporaryDirectory() as place:
+        path = Path(place) / "ward.luff"
+        shutil.copyfile(store.path, path)
+        path.chmod(0o444)
+        Path(place).chmod(0o555)
+        root = os.geteuid() == 0
+        if root:  # root may write anywhere, so be somebody else
+            os.seteuid(65534)
+        try:
+            with Store.open(path) as reader:
+                assert reader.read_only
+                assert [n.key for n in reader.notices] == ["store.read_only_place"]
+                assert len(reader.entries("E1")) == 1
+                assert reader.verify() == ()
+        finally:
+            if root:
+                os.seteuid(0)
+            Path(place).chmod(0o755)
+
+
+@pytest.mark.parametrize(
+    "name", ["ward #1 ?mode=ro&x=50%.luff", "B\u00e4nk \u2013 3.luff", "a'b;c.luff", ".luff"]
+)
+def test_a_store_may_have_any_name(tmp_path: Path, name: str) -> None:
+    with Store.create(tmp_path / name, now=NOW) as made:
+        made.append([rr()], by="AB", operation="log", now=NOW)
+        made.backup(tmp_path / f"copy {name}")
+    with Store.open(tmp_path / name) as again:
+        assert again.head() == 1
+    assert {p.name for p in tmp_path.iterdir()} == {name, f"copy {name}"}
 
 
 def test_another_writer_beyond_the_timeout_is_said_in_words(store: Store) -> None:

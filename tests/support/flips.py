@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import random
 from collections.abc import Iterable
 from pathlib import Path
 
@@ -80,3 +81,25 @@ def outcomes(path: Path, places: Iterable[int], *, encrypted: bool) -> dict[str,
         found.setdefault(outcome(path, secret, truth), []).append(place)
     path.write_bytes(sound)
     return found
+
+
+def mutated(sound: bytes, chance: random.Random) -> bytes:
+    """A file that time, a bad cable or an enemy changed."""
+    data = bytearray(sound)
+    for _ in range(chance.randint(1, 4)):
+        at, length = chance.randrange(len(data) + 1), chance.randint(1, 4096)
+        kind = chance.randrange(5)
+        if kind == 0:
+            del data[at:]
+        elif kind == 1:
+            data[at : at + length] = chance.randbytes(length)
+        elif kind == 2:
+            data[at : at + 2] = chance.choice(
+                [b"\x00\x00", b"\xff\xff", b"\x7f\xff", b"\x80\x00", b'"\n', b",,"]
+            )
+        elif kind == 3:
+            data[at:at] = data[at : at + length]
+        else:
+            del data[at : at + length]
+        data = data or bytearray(b"\x00")
+    return bytes(data)
