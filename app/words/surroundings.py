@@ -40,6 +40,7 @@ TEMPLATES: Final[dict[str, str]] = {
         "Update the program.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
+    "store.backup_failed": "The backup {path} could not be written: {detail}.",
     "store.busy": "{path} is busy: another program is writing ({detail}). Try again in a moment.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",
     "store.damaged":
