@@ -28,7 +28,7 @@ from app.theme import Theme
 from app.words import Reader
 from core.figures.gas_path import PathGas
 
-_SHOWN = (0, 1, 2, 3, 4, 7)
+_SHOWN = (0, 1, 3, 4, 7)
 """The columns of the table that find room beside the map; all of them are in the table dialog."""
 _TIME, _SITE = 1, 2
 
@@ -109,8 +109,9 @@ class MapView(QWidget):
         self.map.set_spec(spec)
         self.title.setText(self.tr("Acid-base map, {label}").format(label=on.figures.label))
         self._fill(map_table(on.figures, reader))
-        wanted = before.number if before is not None else spec.gases[-1].number if spec.gases else None
-        self.map.choose(-1 if wanted is None else wanted)
+        self.map.choose(before.number if before is not None else 0)
+        if self.map.chosen is None and spec.gases:
+            self.map.choose(spec.gases[-1].number)
         self._tell(self.map.chosen)
 
     @property
@@ -132,7 +133,7 @@ class MapView(QWidget):
         self.table.setHorizontalHeaderLabels([table.heads[c] for c in _SHOWN])
         for r, row in enumerate(table.rows):
             for n, c in enumerate(_SHOWN):
-                item = QTableWidgetItem(_short(c, row[c]))
+                item = QTableWidgetItem(_short(c, row))
                 item.setToolTip(row[c])
                 item.setData(Qt.ItemDataRole.UserRole, int(row[0]))
                 self.table.setItem(r, n, item)
@@ -191,8 +192,9 @@ class MapView(QWidget):
         super().keyPressEvent(event)
 
 
-def _short(column: int, text: str) -> str:
-    """A cell as far as there is room beside the map: the clock without the date, the site without "gas"."""
+def _short(column: int, row: tuple[str, ...]) -> str:
+    """A cell as far as there is room beside the map: the clock without the date, and the site where it is unusual."""
     if column == _TIME:
-        return text.partition(" ")[2]
-    return text.replace(" gas", "").rstrip(".") if column >= _SITE else text
+        site = row[_SITE].replace(" gas", "")
+        return row[_TIME].partition(" ")[2] + ("" if site == "arterial" else f", {site}")
+    return row[column].rstrip(".")

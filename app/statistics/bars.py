@@ -158,7 +158,7 @@ class StatisticsBars(QWidget):
         rows = [(clock_name(c.key), found.clocks[c.key]) for c in START_CLOCKS]
         rows.append((translate("statistics", "From the start to the first gas"), found.first_gas))
         row = px(38)
-        note = translate("statistics", "a dot for each episode; line: limit")
+        note = translate("statistics", "line: limit")
         title = translate("statistics", "Time to start, and to the first gas")
         top = self._card(painter, title, note, y, width, row * 4)
         longest = max([m for _, w in rows for m in w.minutes] + [130.0])
