@@ -63,6 +63,16 @@ def episode_entries(connection: sa.Connection, episode: str, head: int) -> tuple
     return tuple(sorted(found.values(), key=lambda e: e.seq))
 
 
+def entries_where(connection: sa.Connection, condition: sa.ColumnElement[bool]) -> list[Entry]:
+    """The entries of any episode for which a condition on the tables entry and batch holds, in order."""
+    return [_entry(row) for row in connection.execute(_SELECT_ENTRIES.where(condition).order_by(_e.seq))]
+
+
+def superseded(connection: sa.Connection, ids: Iterable[str]) -> frozenset[str]:
+    """Those of `ids` that a later entry replaces."""
+    return frozenset(e.replaces for e in _where_in(connection, _e.replaces, ids, 2**62))
+
+
 def texts_of(connection: sa.Connection, channel: str) -> tuple[tuple[str, str], ...]:
     """The texts of a channel that stand in any episode, as (episode, text), in order of recording."""
     rows = connection.execute(_SELECT_ENTRIES.where(_e.channel == channel).order_by(_e.seq))

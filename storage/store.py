@@ -22,6 +22,7 @@ from core.record.samples import DeviceSamples
 from storage import documents, keys, opening, settings_kept
 from storage import episode_index as index
 from storage import reading_ledger as reading
+from storage import reading_sources as taken
 from storage import schema as s
 from storage.chain import GENESIS, last_batch
 from storage.changes import Changes, changes_between
@@ -154,9 +155,10 @@ class Store:
 
     def head_known_at(self, known_at: Instant) -> int:
         """The largest sequence recorded by a moment; 0 when nothing had been."""
-        query = sa.select(sa.func.max(s.batch.c.last_seq)).where(s.batch.c.recorded_at <= known_at)
+        b = s.batch.c  # recording times never step back, so the newest batch by then has the largest sequence
+        query = sa.select(b.last_seq).where(b.recorded_at <= known_at).order_by(b.recorded_at.desc(), b.seq.desc())
         with self._opened.database.read() as connection:
-            return int(connection.execute(query).scalar() or 0)
+            return int(connection.execute(query.limit(1)).scalar() or 0)
 
     def recorded_beside(self, at: Instant) -> tuple[Instant | None, Instant | None]:
         """The newest moment before `at` and the earliest after it at which anything was recorded."""
@@ -240,6 +242,31 @@ class Store:
         """Every text that stands for a text channel, with its episode: (episode, text)."""
         with self._opened.database.read() as connection:
             return reading.texts_of(connection, channel)
+
+    def superseded(self, ids: Sequence[str]) -> frozenset[str]:
+        """Those of `ids` that a later entry replaces."""
+        with self._opened.database.read() as connection:
+            return reading.superseded(connection, ids)
+
+    def sources(self) -> tuple[taken.TakenSource, ...]:
+        """Every file or stream that was taken in, with what it brought, in order of taking."""
+        with self._opened.database.read() as connection:
+            return taken.taken_sources(connection)
+
+    def source_entries(self, source_id: str) -> tuple[Entry, ...]:
+        """The entries that a source brought, in order."""
+        with self._opened.database.read() as connection:
+            return taken.source_entries(connection, source_id)
+
+    def source_spans(self, source_id: str) -> tuple[taken.SampleSpan, ...]:
+        """Where a source's device samples lie, one span per episode and channel."""
+        with self._opened.database.read() as connection:
+            return taken.source_spans(connection, source_id)
+
+    def later_spans(self, span: taken.SampleSpan, seq: int) -> tuple[taken.SampleSpan, ...]:
+        """Where device samples of a span's episode and channel were laid after a sequence."""
+        with self._opened.database.read() as connection:
+            return taken.later_spans(connection, span, seq)
 
     def known_entry_ids(self, ids: Sequence[str]) -> frozenset[str]:
         """Those of `ids` that are entries of the store."""

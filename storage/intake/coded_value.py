@@ -44,14 +44,23 @@ def coded_reading(channel: Channel, text: str, unit_code: str, *, is_ucum: bool)
     """
     if channel.kind is not Kind.NUMBER:
         return read_value(channel, text)
-    if _WITH_COMPARATOR.match(text):
-        raise refuse("value.comparator", channel=channel.key, value=text[:40], accepted="one exact number")
+    refuse_limit(channel, text)
     if not unit_code.strip():
         if len(channel.units) > 1 and channel.unit not in _SELF_EVIDENT:
             accepted = ", ".join(u.name for u in channel.units)
             raise refuse("unit.missing", channel=channel.key, value=text[:40], accepted=accepted)
         return read_value(channel, text)
     return read_value(channel, text, unit_name(channel, unit_code, is_ucum=is_ucum))
+
+
+def refuse_limit(channel: Channel, text: str) -> None:
+    """Refuse `> 60` and its like: a limit is no value.
+
+    Raises:
+        RecordError: `value.comparator`.
+    """
+    if _WITH_COMPARATOR.match(text):
+        raise refuse("value.comparator", channel=channel.key, value=text[:40], accepted="one exact number")
 
 
 def unit_name(channel: Channel, code: str, *, is_ucum: bool) -> str:

@@ -18,6 +18,8 @@ from storage.intake.sample_spool import LeakUse
 from storage.rules import Lookup, Replaced, problem
 from storage.store import Store
 
+WITHDRAWN_WHOLE = "withdrawn with its whole file"
+"""The reason on each entry of a file that was withdrawn whole."""
 _Key = tuple[str, Instant, str, float | None, str | None, str, Action, str]
 _IN_FILE = 1 << 40
 """Sequences that a file's rows would take: later than any of the store."""
@@ -77,7 +79,7 @@ class EntryRows:
         if self._existing is None:
             return rows
         ids = self._existing.known_entry_ids([r.draft.id for r in rows if r.draft.id])
-        keys = {e: {_key_of(h) for h in self._held_entries(e)} for e in {r.draft.entry.episode for r in rows}}
+        keys = {e: self._held_keys(e) for e in {r.draft.entry.episode for r in rows}}
         out = []
         for row in rows:
             entry = row.draft.entry
@@ -86,6 +88,12 @@ class EntryRows:
             else:
                 out.append(row)
         return out
+
+    def _held_keys(self, episode: str) -> set[_Key]:
+        """What the store holds of an episode, but for rows withdrawn with their whole file: those may come again."""
+        held = self._held_entries(episode)
+        again = {e.replaces for e in held if e.action is Action.WITHDRAW and e.reason == WITHDRAWN_WHOLE}
+        return {_key_of(e) for e in held if e.id not in again}
 
     @staticmethod
     def _in_order(rows: list[EntryRow]) -> list[EntryRow]:

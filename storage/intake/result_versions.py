@@ -14,6 +14,7 @@ from core.record.entries import Action, Entry, NewEntry
 from core.record.instant import Instant
 from core.record.message import Message
 from storage.draft_batch import DraftEntry
+from storage.intake.entry_rows import WITHDRAWN_WHOLE
 from storage.intake.row_reading import EntryRow
 from storage.store import Store
 
@@ -56,6 +57,7 @@ class _Link:
     at: Instant
     gone: bool
     episode: str
+    with_file: bool = False
 
 
 def identity(*parts: str) -> str:
@@ -81,27 +83,34 @@ class ResultVersions:
     def add(self, result: Result) -> EntryRow | None:
         """The row that a result makes, or None where it brings nothing new."""
         chain = self._chain(result)
-        value = _value(result.entry)
+        fresh = 1 + max((i for i, link in enumerate(chain) if link.gone and link.with_file), default=-1)
+        live = chain[fresh:]
+        if fresh:  # its file was withdrawn whole: what it brought may come again, as new versions
+            result = replace(result, version=identity(result.version, chain[fresh - 1].id))
         if result.version in self._versions or self._is_stored(result.version, result.entry.episode):
             self.repeated += 1
             return None
         self._versions.add(result.version)
-        if not chain:
-            if result.standing is Standing.GONE:
-                self.nothing_to_withdraw.append(result)
-                return None
-            return self._row(result, chain, result.base, Action.ASSERT)
-        end = chain[-1]
         if result.standing is Standing.GONE:
-            if end.gone:
-                self.repeated += 1
-                return None
-            return self._row(result, chain, result.version, Action.WITHDRAW)
-        held = [link for link in chain if not link.gone and (link.value, link.at) == (value, result.entry.at)]
-        if held and (result.standing is Standing.GIVEN or held[-1] is end):
+            return self._gone(result, chain, live)
+        if not live:
+            first = not chain
+            return self._row(result, chain, result.base if first else result.version,
+                             Action.ASSERT if first else Action.CORRECT)  # fmt: skip
+        held = [k for k in live if not k.gone and (k.value, k.at) == (_value(result.entry), result.entry.at)]
+        if held and (result.standing is Standing.GIVEN or held[-1] is chain[-1]):
             self.repeated += 1
             return None
         return self._row(result, chain, result.version, Action.CORRECT)
+
+    def _gone(self, result: Result, chain: list[_Link], live: list[_Link]) -> EntryRow | None:
+        if not live:
+            self.nothing_to_withdraw.append(result)
+            return None
+        if live[-1].gone:
+            self.repeated += 1
+            return None
+        return self._row(result, chain, result.version, Action.WITHDRAW)
 
     def _row(self, result: Result, chain: list[_Link], entry_id: str, action: Action) -> EntryRow:
         entry = result.entry
@@ -125,7 +134,8 @@ class ResultVersions:
         chain = []
         while current is not None:
             gone = current.action is Action.WITHDRAW
-            chain.append(_Link(current.id, _value(current), current.at, gone, current.episode))
+            chain.append(_Link(current.id, _value(current), current.at, gone, current.episode,
+                               current.reason == WITHDRAWN_WHOLE))  # fmt: skip
             later = followers.get(current.id)
             current = later[-1] if later else None
         return chain
