@@ -171,6 +171,23 @@ DEEDS: Final = (
         needs_episode=True,
     ),
     Deed(
+        "flag_seen",
+        "log",
+        QT_TRANSLATE_NOOP("action", "Flag seen"),
+        ("F3",),
+        QT_TRANSLATE_NOOP("action", "Say that you have seen the chosen flag, else the strongest one."),
+        needs_episode=True,
+        parted=True,
+    ),
+    Deed(
+        "settle_flag",
+        "log",
+        QT_TRANSLATE_NOOP("action", "Settle flag..."),
+        ("F4",),
+        QT_TRANSLATE_NOOP("action", "Settle the chosen flag, else the strongest one, with the reason."),
+        needs_episode=True,
+    ),
+    Deed(
         "new_episode",
         "log",
         QT_TRANSLATE_NOOP("action", "New episode..."),

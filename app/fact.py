@@ -29,9 +29,10 @@ class Fact(QFrame):
         folded: Sequence[str] = (),
         fold_word: str = "",
         quiet: bool = False,
+        payload: object = None,
     ) -> None:
         super().__init__()
-        self.explanation = explanation
+        self.explanation, self.payload = explanation, payload
         self._fold_word = fold_word
         self.setProperty("fact", True)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)

@@ -5,8 +5,12 @@ from __future__ import annotations
 from app.deeds.doer import Doer
 from app.log_strip import LogStrip
 from app.operations import episode as episode_operations
+from app.operations import flag as flag_operations
+from app.operations.entry import Recorded
 from app.operations.episode import BeginRequest
 from app.operations.outcome import Outcome
+from app.ward.lane_words import strongest_flag
+from core.judgement.shapes import FlagFigure
 
 
 class LogDeeds(Doer):
@@ -63,6 +67,59 @@ class LogDeeds(Doer):
         self._dialog.accept()
         self._dialog.deleteLater()
         self.model.select(self._begun)
+
+    # flags
+
+    def do_flag_seen(self) -> None:
+        """Say that the chosen flag, else the strongest open one, has been seen."""
+        flag = self._flag()
+        if flag is not None:
+            request = flag_operations.FlagRequest(self.model.session.selection or "", flag.flag_id)
+            self.model.ask(
+                flag_operations.see, request, done=self._flag_said, failed=self.window.show_failure
+            )
+
+    def do_settle_flag(self) -> None:
+        """Ask for the reason, then settle the chosen flag, else the strongest open one."""
+        from app.dialogs.settle_flag import SettleDialog
+
+        flag = self._flag()
+        if flag is not None:
+            self._settling = SettleDialog(
+                flag, self.window.reader, self._settle, self.window.theme, self.window
+            )
+            self._settling.open()
+
+    def _settle(self, flag: FlagFigure, reason: str) -> None:
+        request = flag_operations.FlagRequest(self.model.session.selection or "", flag.flag_id, reason)
+        self.model.ask(flag_operations.settle, request, done=self._flag_settled, failed=self._settling.failed)
+
+    def _flag_settled(self, outcome: Outcome[Recorded]) -> None:
+        self._settling.accept()
+        self._settling.deleteLater()
+        self._flag_said(outcome)
+
+    def _flag_said(self, outcome: Outcome[Recorded]) -> None:  # noqa: ARG002
+        label = self.strip.whom.text()
+        self.window.say(self.tr("Your word on the flag is recorded for {label}.").format(label=label))
+
+    def _flag(self) -> FlagFigure | None:
+        """The flag that has the focus, else the one chosen on its lane, else the strongest open one."""
+        from PySide6.QtWidgets import QApplication
+
+        chosen = [getattr(QApplication.focusWidget(), "payload", None)]
+        item = self.pages.ward.lanes.selected_item
+        if self.pages.name == "ward" and item is not None:
+            chosen.append(item.payload)
+        found = next((p for p in chosen if isinstance(p, FlagFigure)), None)
+        if found is not None:
+            return found
+        feed = self.window.feed
+        answer = feed.answers.get(self.model.session.selection or "") if feed is not None else None
+        flag = strongest_flag(answer.figures) if answer is not None else None
+        if flag is None:
+            self.window.say(self.tr("No open flag."))
+        return flag
 
     def do_correct(self) -> None:
         """Show what was logged for this patient, to be corrected, withdrawn or moved."""

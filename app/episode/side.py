@@ -214,6 +214,7 @@ class _Facts:
                 f"{marker_name(flag.marker, self.reader)}",
                 [x for x in lines if x],
                 sign=Sign(self.theme, Tier(flag.tier), quiet=flag.state == "seen"),
+                payload=flag,
                 explanation=self.explainer.flag(flag),
                 folded=folded,
                 fold_word=word,

@@ -329,3 +329,32 @@ def test_a_second_store_takes_the_place_of_the_first(qtbot, window, tmp_path):
     assert "Nobody stands out" in window.pages.ward.first.text()
     assert not window.actions_by_key["gas_sent"].isEnabled()
     assert window.preferences.recent_stores[0] == str(path)
+
+
+def test_a_flag_is_seen_and_settled_with_a_reason(qtbot, window):
+    from app.dialogs.settle_flag import SettleDialog
+
+    window.select("bed-7")
+    flag = strongest(window)
+    qtbot.keyClick(window, Key.Key_F3)
+    until(qtbot, lambda: state_of_flag(window, flag.flag_id) == ("seen", "AB"))
+    qtbot.keyClick(window, Key.Key_F4)
+    dialog = next(d for d in window.findChildren(SettleDialog) if d.isVisible())
+    dialog.go.click()
+    assert dialog.wrong.text()
+    qtbot.keyClicks(dialog.reason, "intensivist told, ceiling agreed")
+    dialog.go.click()
+    until(qtbot, lambda: state_of_flag(window, flag.flag_id)[0] == "settled")
+    assert strongest(window).flag_id != flag.flag_id
+    assert not window.strip.can_undo  # a word on a flag stands; a new one may follow
+
+
+def strongest(window):
+    from app.ward.lane_words import strongest_flag
+
+    return strongest_flag(window.feed.answers["bed-7"].figures)
+
+
+def state_of_flag(window, flag_id):
+    flags = window.feed.answers["bed-7"].figures.flags
+    return next((f.state, f.seen_by) for f in flags if f.flag_id == flag_id)
