@@ -4,7 +4,7 @@ from typing import Final
 
 RESULTS: Final[dict[str, str]] = {
     "code.ambiguous_saturation":
-        "Code {code} does not say whether a pulse oximeter or an analyser measured the saturation: it was left aside.",
+        "Code {code} does not say whether a pulse oximeter or an analyser measured the saturation: left aside.",
     "code.not_ours": "Code {code}[[ ({name})]] is no quantity of this log: it was left aside.",
     "fhir.modifier": "The observation carries marks that change its meaning. Accepted: {accepted}.",
     "fhir.no_resource": "This is no FHIR resource. Accepted: {accepted}.",
@@ -32,7 +32,8 @@ RESULTS: Final[dict[str, str]] = {
         "{channel:name} was called back (status {status}), but it had not been taken in: nothing to withdraw.",
     "result.preliminary": "[[{channel:name}: ]]the result is preliminary; a final one may differ.",
     "result.status_unknown": "'{value}' is no status of a result. Accepted: {accepted}.",
-    "sampled.unreadable": "The sampled data of {channel:name} are not of the form that is read. Accepted: {accepted}.",
+    "sampled.unreadable":
+        "The sampled data of {channel:name} are not of the form that is read. Accepted: {accepted}.",
     "time.date_only": "'{value}' is a date without a time of day. Accepted: {accepted}.",
     "time.needs_zone": "The time '{value}' has no offset, and no time zone was named. Accepted: {accepted}.",
     "time.none": "No time of observation is given. Accepted: {accepted}.",
