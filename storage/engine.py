@@ -121,8 +121,6 @@ class Database:
             raise
         except DBAPIError as error:
             raise translated(error.orig or error, self.path) from error
-        except UnicodeDecodeError as error:  # the driver's way to say that a stored text is no text
-            raise store_error("store.damaged", path=self.path.name, detail="text") from error
         except driver_errors() as error:
             raise translated(error, self.path) from error
 

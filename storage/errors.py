@@ -34,6 +34,7 @@ _BY_WORDS = (
     ("disk i/o error", "store.disk_error"),
     ("file is not a database", "store.damaged"),
     ("malformed", "store.damaged"),
+    ("can't decode", "store.damaged"),
     ("out of memory", "store.damaged"),
 )
 
@@ -47,4 +48,5 @@ def translated(error: BaseException, path: Path) -> StoreError:
     return store_error(key, path=path.name, detail=str(error).splitlines()[0][:200])
 
 
-DRIVER_ERRORS: tuple[type[BaseException], ...] = (sqlite3.Error,)
+DRIVER_ERRORS: tuple[type[BaseException], ...] = (sqlite3.Error, UnicodeDecodeError)
+"""Beside the driver's own: what it raises when a text in the file, or in its own message, is no text."""
