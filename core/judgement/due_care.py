@@ -36,7 +36,7 @@ def skin_items(seen: Observed) -> Iterator[Item]:
             continue
         item = Item("skin_check", Message("due.skin_check", {"last_at": last}), last + int(rule.from_min * MINUTE),
                     last + int(rule.until_min * MINUTE), rule.soon_min)  # fmt: skip
-        yield item if done is None else replace(item, done_at=done)
+        yield item if done is None else replace(item, done_at=done, done_by=seen.entry_id("skin_check", done))
 
 
 def assessed(seen: Observed) -> list[Instant]:

@@ -9,13 +9,12 @@ from __future__ import annotations
 from bisect import bisect_left
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
-from math import isnan
 
 from core.judgement.due_item import Item
 from core.judgement.markers.observed import Observed
 from core.judgement.policy_sections import DueRule
 from core.judgement.response_noise import direction, rr_noise
-from core.judgement.shapes import GasFigure, ResponseFigure
+from core.judgement.shapes import GasFigure, ResponseFigure, Step
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
 
@@ -131,17 +130,22 @@ def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
     channels = {s.channel for s in response.steps}
     if "mode" in channels:
         return True
-    if channels & {"ipap", "epap", "cpap", "pressure_support"}:
-        before, after = seen.settings.before(response.first_at), seen.settings.at(response.anchor_at)
-        support = abs(after.pressure_support - before.pressure_support)
-        if not isnan(support) and round(support - rule.limits["pressure_support"], 6) >= 0:
-            return True
+    moved = {c: _moved(response.steps, c) for c in channels}
+    support = moved.get("ipap", 0.0) - moved.get("epap", 0.0) + moved.get("pressure_support", 0.0)
+    if round(abs(support) - rule.limits["pressure_support"], 6) >= 0:
+        return True
     if not channels & {"fio2", "o2_flow"} or not (seen.risk_since is not None or seen.ctx.hypercapnic_risk):
         return False
-    return any(
-        round(steps.at(response.anchor_at) - steps.before(response.first_at) - rule.limits[name], 6) >= 0
-        for name, steps in (("fio2", seen.settings.fio2), ("o2_flow", seen.settings.o2_flow))
-    )
+    return any(round(moved.get(c, 0.0) - rule.limits[c], 6) >= 0 for c in ("fio2", "o2_flow"))
+
+
+def _moved(steps: tuple[Step, ...], channel: str) -> float:
+    """By how much the steps of an anchor moved a setting in all; what was not known on one side moved nothing."""
+    moved = 0.0
+    for step in steps:
+        if step.channel == channel and isinstance(step.before, (int, float)) and isinstance(step.after, (int, float)):
+            moved += step.after - step.before
+    return moved
 
 
 def _worse_after_break(seen: Observed, response: ResponseFigure) -> bool:

@@ -38,12 +38,12 @@ def _after_flag(
     first = min(standing, key=lambda f: f.since)
     item = _item(rule, what, Message(f"due.{what}", {"marker": first.marker, "since": first.since}), first.since)
     done = _first_after(seen, closing, first.since)
-    return item if done is None else replace(item, done_at=done)
+    return item if done is None else replace(item, done_at=done[0], done_by=seen.entry_id(done[1], done[0]))
 
 
-def _first_after(seen: Observed, channels: tuple[str, ...], since: Instant) -> Instant | None:
-    moments = [int(t) for c in channels for t in seen.episode.text(c).t if t > since]
-    moments += [int(t) for c in channels for t in seen.episode.number(c).t if t > since]
+def _first_after(seen: Observed, channels: tuple[str, ...], since: Instant) -> tuple[Instant, str] | None:
+    moments = [(int(t), c) for c in channels for t in seen.episode.text(c).t if t > since]
+    moments += [(int(t), c) for c in channels for t in seen.episode.number(c).t if t > since]
     return min(moments, default=None)
 
 
@@ -82,7 +82,8 @@ def ceiling_item(seen: Observed) -> Item | None:
     if seen.episode.latest_text("ceiling_of_care") in (None, "not recorded"):
         return item
     decided = int(ceiling.t[-1])
-    return replace(item, done_at=decided) if decided > begun else None
+    done = replace(item, done_at=decided, done_by=seen.entry_id("ceiling_of_care", decided))
+    return done if decided > begun else None
 
 
 def break_end_items(seen: Observed) -> Iterator[Item]:

@@ -9,12 +9,13 @@ from __future__ import annotations
 import json
 from collections.abc import Iterable
 from dataclasses import dataclass, field
+from math import isfinite
 from typing import Any
 
 from core.judgement.shapes import FlagFigure
 from core.record.entries import Action, Entry, NewEntry
 from core.record.instant import Instant
-from core.record.message import Message
+from core.record.message import Message, Value
 
 ENGINE = "1"
 """The version of the markers' rules in code; raised when the same policy would give other flags."""
@@ -135,10 +136,15 @@ def _entry(flag: FlagFigure, words: str, episode_key: str, policy_hash: str, now
     told: dict[str, Any] = {"flag_id": flag.flag_id, "since": flag.since, "policy": policy_hash, "engine": ENGINE}
     if words == RAISED:
         told |= {"tier": flag.tier, "group": flag.group, "source": flag.source, "sure": flag.sure,
-                 "evidence": [[m.key, dict(m.values)] for m in flag.evidence]}  # fmt: skip
+                 "evidence": [[m.key, _kept(m)] for m in flag.evidence]}  # fmt: skip
     if words == NO_LONGER:
         told["ended_at"] = flag.ended_at
     return NewEntry(episode_key, flag.marker, now, words=words, raw=_json(told), action=Action.FLAG)
+
+
+def _kept(message: Message) -> dict[str, Value]:
+    """The values of a message as JSON can hold them: what is not a number is absent."""
+    return {k: None if isinstance(v, float) and not isfinite(v) else v for k, v in message.values.items()}
 
 
 def _json(told: dict[str, Any]) -> str:

@@ -17,9 +17,10 @@ from core.record.episode import Series
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 
-BETA_AGONIST = re.compile(
-    r"salbutamol|albuterol|terbutaline|formoterol|adrenaline|epinephrine|nebuli[sz]er|\bneb\b", re.IGNORECASE
-)
+BETA_AGONIST = re.compile(r"salbutamol|albuterol|terbutaline|formoterol|adrenaline|epinephrine", re.IGNORECASE)
+NEBULISER = re.compile(r"nebuli[sz]|\bnebs?\b", re.IGNORECASE)
+NO_AGONIST = re.compile(r"ipratropium|saline|budesonide|acetylcysteine|tobramycin|colistin", re.IGNORECASE)
+"""A nebuliser that names none of these may have held a beta-agonist: a doubt is said."""
 RAISED = frozenset({"ipap", "epap", "cpap", "pressure_support"})
 
 
@@ -76,7 +77,8 @@ def _after_beta_agonist(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tup
     drugs = seen.episode.text("drug")
     since = gas.at - int(rule.limits["beta_agonist_h"] * HOUR)
     for at, text in zip(reversed(drugs.t.tolist()), reversed(drugs.v), strict=True):
-        if since <= at <= gas.at and BETA_AGONIST.search(text):
+        nebuliser = NEBULISER.search(text) and not NO_AGONIST.search(text)
+        if since <= at <= gas.at and (BETA_AGONIST.search(text) or nebuliser):
             return (Message("evidence.after_beta_agonist", {"at": at, "text": text}),)
     return ()
 

@@ -15,6 +15,7 @@ from core.record.message import Message
 
 DROWSY = frozenset({"voice", "pain", "unresponsive"})
 LEVELS = ("alert", "confusion", "voice", "pain", "unresponsive")
+"""From best to worst."""
 
 
 def _gcs_below(seen: Observed, limit: float) -> list[Spell]:
@@ -56,16 +57,15 @@ def gcs_fall(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 
 def new_confusion(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
-    """Confusion or less in a patient who was alert before; ends when alert again."""
+    """New confusion or worse: a level below the best that was seen before; ends when that is reached again."""
     levels = seen.episode.text("acvpu")
     points = []
-    was_alert = False
+    best: int | None = None
     for t, word in zip(levels.t.tolist(), levels.v, strict=True):
-        if word == "alert":
-            was_alert = True
-            points.append(Point(t, False))
-        elif was_alert:
-            points.append(Point(t, True, (Message("evidence.event", {"event": "acvpu", "at": t, "text": word}),)))
+        level = LEVELS.index(word)
+        told = (Message("evidence.event", {"event": "acvpu", "at": t, "text": word}),)
+        points.append(Point(t, best is not None and level > best, told))
+        best = level if best is None else min(best, level)
     return from_points(points)
 
 

@@ -7,12 +7,13 @@ code to it. Pressures in mmHg beside the limit's kPa form, rates per minute, ins
 from __future__ import annotations
 
 from collections.abc import Mapping
+from math import floor, isnan
 from types import MappingProxyType
 from typing import Final
 
 from core.judgement.policy_sections import PressureLimit
 from core.judgement.shapes import GasFigure
-from core.physiology.pressure import above_pressure_limit, below_pressure_limit
+from core.physiology.constants import KPA_IN_MMHG
 from core.record.instant import Instant
 from core.record.message import Message, Value
 
@@ -130,9 +131,18 @@ def gas_doubts(gas: GasFigure) -> tuple[Message, ...]:
 
 def is_below(mmhg: float, limit: PressureLimit) -> bool:
     """Whether a gas pressure is below a paired limit, in tenths of a kPa; NaN never is."""
-    return bool(below_pressure_limit(mmhg, limit.kpa))
+    return tenths(mmhg) < round(limit.kpa * 10.0)
 
 
 def is_above(mmhg: float, limit: PressureLimit) -> bool:
     """Whether a gas pressure is above a paired limit, in tenths of a kPa; NaN never is."""
-    return bool(above_pressure_limit(mmhg, limit.kpa))
+    return tenths(mmhg) > round(limit.kpa * 10.0)
+
+
+def tenths(mmhg: float) -> float:
+    """Whole tenths of a kPa, half-up: `physiology.pressure.tenths_of_kpa` for one number, which markers ask often.
+
+    >>> tenths(45.0), tenths(60.0)
+    (60, 80)
+    """
+    return mmhg if isnan(mmhg) else floor(mmhg / KPA_IN_MMHG * 10.0 + 0.5 + 1e-9)

@@ -98,18 +98,14 @@ def news2_rise(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """NEWS2 2 or more over the patient's own low of the last 4 h, whatever is missing."""
     course = seen.once(news2_course)
     span, rise = int(rule.limits["within_h"] * HOUR), rule.limits["points"]
+    t, low, high = course.t.tolist(), course.low.tolist(), course.high.tolist()
+    firsts = np.searchsorted(course.t, course.t - span).tolist()
     points = []
-    for k in range(1, course.t.size):
-        j = int(np.searchsorted(course.t, course.t[k] - span))
-        if j == k:
+    for k in range(1, len(t)):
+        if firsts[k] == k:
             continue
-        if course.low[k] - course.high[j:k].min() < rise:
-            points.append(Point(int(course.t[k]), False))
-            continue
-        own = j + int(np.argmin(course.high[j:k]))
-        told: dict[str, Value] = {
-            "score": "news2", "before": float(course.high[own]), "before_at": int(course.t[own]),
-            "lowest": float(course.low[k]), "highest": float(course.high[k]), "at": int(course.t[k]),
-        }  # fmt: skip
-        points.append(Point(int(course.t[k]), True, (Message("evidence.score_rise", told),)))
+        own = min(range(firsts[k], k), key=high.__getitem__)
+        told: dict[str, Value] = {"score": "news2", "before": high[own], "before_at": t[own], "lowest": low[k],
+                                  "highest": high[k], "at": t[k]}  # fmt: skip
+        points.append(Point(t[k], low[k] - high[own] >= rise, (Message("evidence.score_rise", told),)))
     return from_points(points)

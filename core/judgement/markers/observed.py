@@ -150,6 +150,15 @@ class Observed:
         """Rate and SpO2 near a moment."""
         return VitalsNear(self.episode, self.policy)
 
+    def entry_id(self, channel: str, at: Instant) -> str | None:
+        """The id of the entry that logged a channel at a moment; None for a machine's value."""
+        words, series = self.episode.text(channel), self.episode.number(channel)
+        for t, origin in ((words.t, words.origin), (series.t, series.origin)):
+            i = int(np.searchsorted(t, at, side="right")) - 1
+            if i >= 0 and t[i] == at and origin[i] >= 0:
+                return self.episode.standing[int(origin[i])].entry.id
+        return None
+
     def rate_near(self, at: Instant) -> Found | None:
         """The respiratory rate nearest to a moment, not later than `as_of`."""
         return self.vitals.rate(at, 0, self.as_of)

@@ -195,6 +195,8 @@ def test_skin_under_the_mask():
     assert gas(BASE, "04:45", "skin_check") == ("04:00", "05:00", "soon", None)
     assert met("skin_check_overdue", BASE, "05:30") == "05:00-"
     assert met("skin_check_overdue", BASE + "05:10 skin_check", "05:30") == "05:00-05:10"
+    done = [d for d in due(BASE + "05:10 skin_check", "05:30", "skin_check") if d.state == "done"]
+    assert [d.done_by for d in done] == [entries(BASE + "05:10 skin_check")[-1].id]
     assert due(BASE + "01:00 interface helmet", "05:30", "skin_check") == []
 
 

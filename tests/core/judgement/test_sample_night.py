@@ -1,8 +1,11 @@
 """The sample night: escalation on every episode that fails and on no stable one. The truth is the simulation's, which
 shares no code with the judgement."""
 
+import json
+
 import pytest
 
+from core.judgement.flag_history import transitions
 from core.judgement.markers.evidence import KEYS
 from core.judgement.shapes import FlagFigure
 from core.record.instant import HOUR, parse
@@ -40,6 +43,8 @@ def test_those_that_do_not_fail_are_not(key):
 def test_every_message_is_in_the_list_with_its_values(key):
     told = said(night()[key], END)
     messages = [m for f in told.flags for m in f.evidence] + [d.because for d in told.due]
+    news = transitions(told.flags, (), key, told.ctx.policy.hash, END)
+    assert {json.loads(n.raw)["flag_id"] for n in news} == {f.flag_id for f in told.flags}
     for message in messages:
         assert set(message.values) == set(KEYS[message.key]), message.key
 

@@ -52,6 +52,8 @@ def test_lactate_after_a_nebuliser_says_so():
 
     key = "evidence.after_beta_agonist"
     assert key in said("nebuliser: salbutamol 5 mg", "01:30")
+    assert key in said("nebuliser", "01:30")  # may have held one
+    assert key not in said("nebuliser: ipratropium", "01:30")
     assert key not in said("morphine 2 mg", "01:30")
     assert key not in said("salbutamol", "02:01")  # after the sample
     assert told("lactate_above_2", BASE + "02:00 ph 7.30 lactate 3").keys() == {"evidence.value"}

@@ -27,6 +27,8 @@ BASE = COPD + START
         ("gcs_fall", "02:00 gcs 15\nd1 02:00 gcs 13", "d1 02:00-"),
         ("new_confusion", "02:00 acvpu alert\n04:00 acvpu confusion", "04:00-"),
         ("new_confusion", "02:00 acvpu confusion", ""),  # not known to be new
+        ("new_confusion", "02:00 acvpu confusion\n04:00 acvpu voice", "04:00-"),  # worse
+        ("new_confusion", "02:00 acvpu voice\n04:00 acvpu confusion", ""),  # better
         ("new_confusion", "02:00 acvpu alert\n04:00 acvpu voice\n05:00 acvpu alert", "04:00-05:00"),
         ("rate_below_12_drowsy", "02:00 rr 11 acvpu voice", "02:00-"),
         ("rate_below_12_drowsy", "02:00 rr 12 acvpu voice", ""),

@@ -1,5 +1,7 @@
 """Spells: joined, clipped, begun and ended, whatever finds them."""
 
+from itertools import pairwise
+
 import numpy as np
 from hypothesis import given
 from hypothesis import strategies as st
@@ -81,7 +83,7 @@ def test_held_is_on_from_a_switch_on_until_a_switch_off(events):
 def test_joined_spells_are_apart_and_in_order(raw, gap):
     spells = united([Spell(a, a + n, ()) for a, n in raw])
     joined = without_flicker(spells, gap, 1000)
-    for before, after in zip(joined, joined[1:], strict=False):
+    for before, after in pairwise(joined):
         assert before.until is not None
         assert after.since - before.until >= gap
     covered = {x for s in spells for x in range(s.since, s.until or 0)}
