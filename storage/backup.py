@@ -8,8 +8,9 @@ from contextlib import closing
 from pathlib import Path
 
 from storage import keys, opening
-from storage.engine import driver_errors, raw_connection
+from storage.engine import Database, driver_errors, raw_connection
 from storage.errors import store_error, translated
+from storage.verify import findings
 
 
 def backup(store: Path, key: bytes | None, target: Path) -> None:
@@ -76,8 +77,11 @@ def _sync(path: Path) -> None:
         os.close(descriptor)
 
 
-def restore(source: Path, new: Path) -> None:
+def restore(source: Path, new: Path, passphrase: str | None = None) -> None:
     """Make a new store of a backup, with its envelope; whole or not at all, and nothing is overwritten.
+
+    A plain backup is verified before it is taken; an encrypted one when its passphrase is given, else its pages
+    are checked as it is opened.
 
     Raises:
         StoreError: `store.missing`, `store.exists`, `store.not_a_store`, `store.damaged`.
@@ -93,7 +97,9 @@ def restore(source: Path, new: Path) -> None:
         unfinished.touch(mode=0o600)
         shutil.copyfile(source, unfinished)
         if not encrypted:
-            _check_plain(unfinished)
+            _check_sound(unfinished, None)
+        elif passphrase is not None:
+            _check_sound(unfinished, opening.data_key(source, passphrase))
         _sync(unfinished)
         if encrypted:
             keys.write_envelope(keys.envelope_path(new), keys.read_envelope(keys.envelope_path(source)))
@@ -107,9 +113,27 @@ def restore(source: Path, new: Path) -> None:
             keys.envelope_path(new).unlink(missing_ok=True)
 
 
-def _check_plain(path: Path) -> None:
+_DAMAGE = (
+    "verify.pages",
+    "verify.chain",
+    "verify.orphan",
+    "verify.chunk",
+    "verify.document",
+    "verify.unreadable",
+)
+"""Findings that make a backup unfit: what it says is not what was recorded."""
+
+
+def _check_sound(path: Path, key: bytes | None) -> None:
     try:
-        _check_opens(path, None)
+        _check_opens(path, key)
     except driver_errors() as error:
         raise translated(error, path) from error
-    opening.open_store(path, None, read_only=True).database.close()
+    database = Database(path, key, mode="ro")
+    try:
+        opening.check_facts(database)
+        wrong = [m for m in findings(database, encrypted=key is not None) if m.key in _DAMAGE]
+    finally:
+        database.close()
+    if wrong:
+        raise store_error("store.damaged", path=path.name.removesuffix(".unfinished"), detail=wrong[0].key)

@@ -115,7 +115,7 @@ def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float 
         notices.append(Message("store.read_only_place", {"path": path.name}))
     database = Database(path, key, mode=_mode(path, read_only or bool(notices)), busy=busy)
     try:
-        facts = _checked(database)
+        facts = check_facts(database)
         with database.read() as connection:
             wrong = trigger_findings(connection)
     except BaseException:
@@ -161,8 +161,12 @@ def data_key(path: Path, passphrase: str | None) -> bytes | None:
     return keys.open_envelope(text, passphrase)
 
 
-def _checked(database: Database) -> dict[str, str]:
-    """The store's own facts, once its format is known to be ours."""
+def check_facts(database: Database) -> dict[str, str]:
+    """The store's own facts, once its format is known to be ours.
+
+    Raises:
+        StoreError: `store.not_a_store`, `store.newer`, `store.older`.
+    """
     try:
         with database.read() as connection:
             if application_id(connection) != APPLICATION_ID:

@@ -357,15 +357,18 @@ class Store:
         backup(self.path, self._opened.key, Path(path))
 
     @classmethod
-    def restore(cls, backup_path: Path | str, new_path: Path | str) -> None:
-        """Make a new store of a backup; an existing file is never overwritten.
+    def restore(
+        cls, backup_path: Path | str, new_path: Path | str, *, passphrase: str | None = None
+    ) -> None:
+        """Make a new store of a backup; an existing file is never overwritten. One that is damaged is refused:
+        a plain one always, an encrypted one when its passphrase is given.
 
         Raises:
             StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`.
         """
         from storage.backup import restore
 
-        restore(Path(backup_path), Path(new_path))
+        restore(Path(backup_path), Path(new_path), passphrase)
 
     def change_passphrase(self, secret: str, new: str, cost: keys.Cost = keys.DEFAULT_COST) -> None:
         """Give the store a new passphrase; `secret` is the old one or the recovery code.

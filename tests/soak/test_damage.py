@@ -62,6 +62,8 @@ def test_mutated_backups_restore_whole_or_not_at_all(
 ) -> None:
     chance = random.Random(17)
     sound = filled(tmp_path / "a.luff", encrypted=False).read_bytes()
+    with Store.open(tmp_path / "a.luff") as store:
+        truth = read_all(store)
     counts = {"restored": 0, "refused": 0}
     for _ in range(FUZZ // 20):
         (tmp_path / "bad.luff").write_bytes(mutated(sound, chance))
@@ -69,7 +71,8 @@ def test_mutated_backups_restore_whole_or_not_at_all(
         try:
             Store.restore(tmp_path / "bad.luff", new)
             counts["restored"] += 1
-            assert new.exists()
+            with Store.open(new) as store:
+                assert read_all(store)[:4] == truth[:4]
         except (StoreError, RecordError):
             counts["refused"] += 1
             assert not new.exists()

@@ -9,8 +9,10 @@ from pathlib import Path
 import pytest
 
 from core.record.entries import NewEntry
+from storage.engine import raw_connection
 from storage.keys import envelope_path
 from storage.store import Store, StoreError
+from storage.triggers import expected_triggers
 from tests.storage.conftest import NOW, PASSPHRASE
 
 
@@ -104,4 +106,22 @@ def test_a_damaged_backup_of_a_plain_store_is_not_restored(store: Store, tmp_pat
     (tmp_path / "copy.luff").write_bytes(data)
     with pytest.raises(StoreError, match=r"store.damaged"):
         Store.restore(tmp_path / "copy.luff", tmp_path / "new.luff")
+    assert not (tmp_path / "new.luff").exists()
+
+
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_a_backup_that_says_something_else_is_not_restored(
+    make_store: Callable[..., Store], tmp_path: Path, encrypted: bool
+) -> None:
+    store = make_store(encrypted=encrypted)
+    log(store, 1)
+    store.backup(tmp_path / "copy.luff")
+    c = raw_connection(tmp_path / "copy.luff", store._opened.key)
+    c.execute("DROP TRIGGER no_update_entry")
+    c.execute("UPDATE entry SET number = 99")
+    c.execute(expected_triggers()["no_update_entry"])
+    c.close()
+    with pytest.raises(StoreError) as caught:
+        Store.restore(tmp_path / "copy.luff", tmp_path / "new.luff", passphrase=secret(store))
+    assert caught.value.message.values["detail"] == "verify.chain"
     assert not (tmp_path / "new.luff").exists()

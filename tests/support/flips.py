@@ -37,7 +37,7 @@ def filled(path: Path, *, encrypted: bool) -> Path:
     return path
 
 
-def read_all(store: Store) -> object:
+def read_all(store: Store) -> list[object]:
     """Everything a person could read in a store."""
     keys = ("E0", "E1", "E2")
     for key in keys:
@@ -45,15 +45,8 @@ def read_all(store: Store) -> object:
     samples = [(b.channel, b.source, b.t.tolist(), b.v.tolist()) for k in keys for b in store.samples(k)]
     documents = [(d, store.document(d.id)) for d in store.documents()]
     kept = (dict(store.layouts()), dict(store.drafts()))
-    return (
-        [store.entries(k) for k in keys],
-        samples,
-        documents,
-        store.policy(),
-        kept,
-        store.episode_keys(),
-        store.head(),
-    )
+    entries = [store.entries(k) for k in keys]
+    return [entries, samples, documents, store.policy(), kept, store.episode_keys(), store.head()]
 
 
 def outcome(path: Path, secret: str | None, truth: object) -> str:
