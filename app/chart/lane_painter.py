@@ -249,7 +249,7 @@ class LanePainter:
     def _draw_setting(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
         g, theme = self.g, self.theme
         c = theme.colours
-        foot = g.middle + g.thickest / 2
+        foot = g.middle + g.thickest / 2 - theme.px(5)  # on the bar: under it a tick would cut its neighbour's word
         painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
         painter.setFont(theme.font(theme.type.caption))
         left, top = placed.x + theme.px(5), g.lane - theme.px(19)
