@@ -104,7 +104,7 @@ def backup_takeover(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     if not len(rates) or not inside(seen, rule.population, seen.as_of):
         return []
     rates = rates.cut(_in_st(seen, rates))
-    taking = _taking_over(seen, rule, rates)
+    taking = _taking_over(seen, rule, rates) & ~_counted_faster(seen, rule, rates)
     found = []
     n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
     for s in crossings(rates.t, taking.astype(np.float64), 0.5, n, m):
@@ -140,6 +140,19 @@ def _taking_over(seen: Observed, rule: MarkerRule, rates: Series) -> Flags:
     k = np.maximum(i, 0)
     told = (i >= 0) & (rates.t - triggered.t[k] <= 10 * MINUTE)
     return np.asarray(np.where(told, triggered.v[k] <= rule.limits["triggered_percent"], at_set))
+
+
+def _counted_faster(seen: Observed, rule: MarkerRule, rates: Series) -> Flags:
+    """Whether a fresh count says that the patient breathes faster than the set rate: a count beats the machine."""
+    counted = seen.spots("rr")
+    if not len(counted):
+        return np.zeros(rates.t.shape, np.bool_)
+    i = np.searchsorted(counted.t, rates.t, side="right") - 1
+    k = np.maximum(i, 0)
+    fresh = rates.t - counted.t[k] <= int(seen.policy.freshness.vitals_min.value * MINUTE)
+    noise = seen.policy.noise.rr_counted.value
+    set_rate: Values = seen.settings.steps("rate_set").on(rates.t)
+    return np.asarray((i >= 0) & fresh & (counted.v[k] > set_rate + rule.limits["rate_tolerance"] + noise))
 
 
 def _is_new(rule: MarkerRule, rates: Series, taking: Flags, s: Crossing) -> bool:

@@ -49,6 +49,7 @@ TAKEN = "device rr_total 01:05 03:00 22 22\ndevice rr_total 03:00 04:00 12 12\n"
         (BASE + TAKEN, ""),  # GCS and PaCO2 not known to be worse
         (BASE + TAKEN + "02:50 gcs 15\n03:20 gcs 14", "03:20-"),
         (BASE + TAKEN + "02:50 gcs 15\n03:20 gcs 15", ""),
+        (BASE + TAKEN + "02:50 gcs 15 rr 30\n03:20 gcs 14 rr 30\n03:45 rr 30", ""),  # a count beats the machine
         (BASE + TAKEN + "02:50 paco2 60\n03:30 paco2 65", "03:30-"),
         (BASE + TAKEN + "02:50 paco2 60\n03:30 paco2 64", ""),  # inside noise
         (BASE.replace("BPAP-ST", "BPAP-T") + TAKEN + "02:50 gcs 15\n03:20 gcs 14", ""),
