@@ -90,8 +90,9 @@ def _showing(command: Command) -> None:
 
 
 def _recording(command: Command) -> None:
-    intake = command("intake", "take log files (CSV) into the store, each whole or not at all")
+    intake = command("intake", "take files into the store, each whole or not at all: log CSV, tables, HL7 v2, FHIR")
     intake.add_argument("files", nargs="+", type=Path, metavar="FILE")
+    _about_files(intake)
     intake.add_argument("--keep-recording-times", action="store_true",
                         help="make the new store an imported one: recorded_at of the files stands")  # fmt: skip
     log = command("log", 'log one line as typed in the window, e.g. luffmark log N4-07 "14:20 16/6 35"')
@@ -110,6 +111,33 @@ def _recording(command: Command) -> None:
     correct.add_argument("--at", type=moment, metavar="T", help="the right time")
     correct.add_argument("--reason", default="", help="why")
     correct.add_argument("--yes", action="store_true", help="answer yes to the value's questions")
+
+
+def _about_files(intake: argparse.ArgumentParser) -> None:
+    """What a person says of files that are not the log CSV."""
+    intake.add_argument("--episode", default="", metavar="E", help="whose the file is, where it does not say")
+    intake.add_argument("--patient", action="append", type=pair, default=[], metavar="ID=E",
+                        help="the episode of one identifier of a file of results; may be repeated")  # fmt: skip
+    intake.add_argument("--mapping", default="", metavar="NAME", help="how a table is read (see: luffmark mapping)")
+    intake.add_argument("--leak", default="", metavar="WHAT", help="what leak means: unintentional, total, not known")
+    intake.add_argument("--clock-shift", type=float, default=0.0, metavar="S",
+                        help="seconds to add to every time of a device whose clock is off")  # fmt: skip
+    intake.add_argument("--sheet", default="", help="the sheet of a spreadsheet; the first when left out")
+    intake.add_argument("--encoding", default="", help="how a table's text is encoded; found when left out")
+    intake.add_argument("--leave-out-refused", action="store_true",
+                        help="take the file without its refused rows; which ones is recorded")  # fmt: skip
+
+
+def pair(text: str) -> tuple[str, str]:
+    """An identifier and its episode.
+
+    >>> pair("WARD-7|0042=N4-07")
+    ('WARD-7|0042', 'N4-07')
+    """
+    identifier, mark, episode = text.rpartition("=")
+    if not (identifier and mark and episode):
+        raise argparse.ArgumentTypeError(f"'{text}' is no pair. Accepted: IDENTIFIER=EPISODE")
+    return identifier, episode
 
 
 def _printing(command: Command) -> None:
@@ -139,7 +167,21 @@ def _keeping(command: Command) -> None:
     restore.add_argument("file", type=Path, help="the backup")
     export = command("export", "write entries and device samples as a log file (CSV) that intake takes")
     export.add_argument("--out", type=Path, required=True, metavar="FILE")
+    export.add_argument("--format", choices=("csv", "fhir"), default="", help="log CSV, or FHIR R4 (for .json)")
     export.add_argument("--episode", action="append", default=[], help="only this one; may be repeated")
+    export.add_argument("--channel", action="append", default=[], help="only this one, e.g. ph; may be repeated")
+    export.add_argument("--from", dest="start", type=moment, metavar="T", help="only values from then on")
+    export.add_argument("--to", dest="end", type=moment, metavar="T", help="only values up to then")
+    export.add_argument("--as-known-at", type=moment, metavar="T", help="only what was recorded by then")
+    export.add_argument("--dictionary", action="store_true", help="write the data dictionary beside it")
+    export.add_argument("--deidentified", action="store_true",
+                        help="without labels, texts, names and true dates; says what remains")  # fmt: skip
+    taken = command("taken", "the files that were taken in; withdraw one whole")
+    taken.add_argument("--withdraw", default="", metavar="ID", help="withdraw all that this file brought")
+    mapping = command("mapping", "how tables are read: propose for a file, put, list, show, forget")
+    mapping.add_argument("what", choices=("list", "show", "propose", "put", "forget"))
+    mapping.add_argument("subject", nargs="?", help="a file (propose, put) or a name (show, forget)")
+    mapping.add_argument("--name", default="", help="the name to keep it by")
     policy = command("policy", "show the policy in force, or check or put in force a policy file")
     policy.add_argument("what", choices=("show", "check", "put"))
     policy.add_argument("file", nargs="?", type=Path)

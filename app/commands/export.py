@@ -1,17 +1,40 @@
-"""`luffmark export --out FILE`: what stands, as a log file that intake takes."""
+"""`luffmark export --out FILE`: what stands, as a log file that intake takes; or de-identified."""
 
 from __future__ import annotations
 
 import argparse
+from typing import TYPE_CHECKING
 
 from app.commands.context import Context
 from app.operations import export as operations
 
+if TYPE_CHECKING:
+    from storage.store import Store
+
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Write the file; an existing one is never overwritten."""
+    request = operations.ExportRequest(
+        args.out, tuple(args.episode), args.as_known_at, tuple(args.channel), args.start, args.end, args.dictionary
+    )
+    value: dict[str, object] = {"file": str(args.out)}
     with context.open(read_only=True) as store:
-        request = operations.ExportRequest(args.out, tuple(args.episode))
-        rows = operations.write(store, context.by, context.now(), request).value
-    context.answer(f"{args.out}: {rows:,} rows.", {"file": str(args.out), "rows": rows})
+        if args.deidentified:
+            return _deidentified(context, store, request, value)
+        as_fhir = args.format == "fhir" or (not args.format and args.out.suffix == ".json")
+        write = operations.write_fhir if as_fhir else operations.write
+        rows = write(store, context.by, context.now(), request).value
+    context.answer(f"{args.out}: {rows:,} rows.", value | {"rows": rows})
+    return 0
+
+
+def _deidentified(
+    context: Context, store: Store, request: operations.ExportRequest, value: dict[str, object]
+) -> int:
+    from app.export_words import statement_text
+
+    told = operations.write_deidentified(store, context.by, context.now(), request).value
+    value |= {"rows": told.rows, "episodes": told.episodes, "remains": dict(told.remains),
+              "removed": dict(told.removed)}  # fmt: skip
+    context.answer(f"{request.path}\n\n{statement_text(told)}".rstrip(), value)
     return 0

@@ -1,15 +1,18 @@
-"""`luffmark intake FILE...`: log files into the store, each whole or not at all."""
+"""`luffmark intake FILE...`: files into the store, each whole or not at all: the log CSV, tables, HL7 v2, FHIR."""
 
 from __future__ import annotations
 
 import argparse
 import sys
+import time
+from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
 from app.formats import plain
 from app.operations import intake as operations
+from app.operations.outcome import watched
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:
@@ -26,13 +29,16 @@ def run(context: Context, args: argparse.Namespace) -> int:
     taken: list[dict[str, Any]] = []
     with context.open_or_create(imported=args.keep_recording_times) as store:
         for path in args.files:
-            intake = operations.read(store, context.by, context.now(), path).value
-            if intake.refusals or not intake.whole:
+            request = _request(context, path, args)
+            with watched(_progress(path)):
+                intake = operations.read(store, context.by, context.now(), request).value
+            may_leave_out = args.leave_out_refused and intake.whole
+            if (intake.refusals and not may_leave_out) or not intake.whole:
                 _tell_refused(path, intake, reader)
                 if context.json:
                     context.answer("", {"taken": taken, "refused": _refused_json(path, intake, reader)})
                 return 1
-            taken.append(_take(context, store, path, intake, reader))
+            taken.append(_take(context, store, path, intake, reader, leave_out=may_leave_out))
     context.answer("\n".join(t.pop("text") for t in taken), {"taken": taken})
     return 0
 
@@ -44,8 +50,33 @@ def _check_there(files: list[Path]) -> None:
             pass
 
 
-def _take(context: Context, store: Store, path: Path, intake: Intake, reader: Reader) -> dict[str, Any]:
-    made = operations.take(store, context.by, context.now(), operations.TakeRequest(intake)).value
+def _request(context: Context, path: Path, args: argparse.Namespace) -> operations.ReadRequest:
+    return operations.ReadRequest(
+        path, None, args.mapping, args.episode, dict(args.patient), context.local_zone(), args.clock_shift, args.leak,
+        args.sheet, args.encoding,
+    )  # fmt: skip
+
+
+def _progress(path: Path) -> Callable[[int, int], None]:
+    """Time left on a terminal, for files that take longer than a moment; silent elsewhere."""
+    started = time.monotonic()
+    shown = [started]
+
+    def step(done: int, total: int) -> None:
+        now = time.monotonic()
+        if sys.stderr.isatty() and done and total and now - shown[0] > 1:
+            shown[0] = now
+            left = (now - started) * (total - done) / done
+            print(f"{path}: {100 * done // total} %, {left:.0f} s left", file=sys.stderr)
+
+    return step
+
+
+def _take(
+    context: Context, store: Store, path: Path, intake: Intake, reader: Reader, *, leave_out: bool
+) -> dict[str, Any]:
+    request = operations.TakeRequest(intake, leave_out)
+    made = operations.take(store, context.by, context.now(), request).value
     text = (
         f"{path}: {made.entries:,} entries and {made.samples:,} device samples taken, "
         f"{made.repeated:,} were in the store already; {len(made.episodes)} episode(s)."
@@ -55,10 +86,19 @@ def _take(context: Context, store: Store, path: Path, intake: Intake, reader: Re
         text += "".join(f"\n    {_row(d, reader)}" for d in intake.doubts[:_DOUBTS_SHOWN])
         if made.doubtful > _DOUBTS_SHOWN:
             text += f"\n    ... and {made.doubtful - _DOUBTS_SHOWN} more (see --json)"
+    if made.left_out:
+        text += f"\n  {made.left_out} refused row(s) left out, as asked:"
+        text += "".join(f"\n    {_row(r, reader)}" for r in intake.refusals[:_DOUBTS_SHOWN])
+    if made.aside:
+        text += f"\n  {made.aside} value(s) left aside:"
+        text += "".join(f"\n    {_row(r, reader)}" for r in intake.aside[:_DOUBTS_SHOWN])
     return {
         "text": text, "file": str(path), "entries": made.entries, "samples": made.samples,
         "repeated": made.repeated, "episodes": list(made.episodes),
         "doubts": [_row_json(d, reader) for d in intake.doubts],
+        "left_out": [_row_json(r, reader) for r in intake.refusals],
+        "aside": [_row_json(r, reader) for r in intake.aside],
+        "source": made.source_id,
     }  # fmt: skip
 
 

@@ -1,4 +1,4 @@
-"""Operations that write what the store holds into files that intake takes."""
+"""Operations that write what the store holds into files: for intake elsewhere, for a spreadsheet, for others."""
 
 from __future__ import annotations
 
@@ -8,32 +8,117 @@ from typing import TYPE_CHECKING
 
 from app.operations.episode import check_known
 from app.operations.outcome import Outcome
+from core.record.channels import channel
 from core.record.instant import Instant
+from core.record.message import refuse
 
 if TYPE_CHECKING:
+    from storage.export.deidentified import Statement
+    from storage.export.selection import Selection
     from storage.store import Store
 
 
 @dataclass(frozen=True, slots=True)
 class ExportRequest:
-    """Where to, and which episodes (empty: all). `as_known_at` None: all that is recorded."""
+    """Where to and what: episodes and channels (empty: all), a span (None: open), as known at a moment (None: all).
+
+    `dictionary`: the data dictionary goes beside it, into `FILE.dictionary.csv`.
+    """
 
     path: Path
     episodes: tuple[str, ...] = ()
     as_known_at: Instant | None = None
+    channels: tuple[str, ...] = ()
+    start: Instant | None = None
+    end: Instant | None = None
+    dictionary: bool = False
+
+    @property
+    def dictionary_path(self) -> Path:
+        """Where the data dictionary goes."""
+        return self.path.with_name(f"{self.path.stem}.dictionary.csv")
+
+    @property
+    def about_path(self) -> Path:
+        """Where a de-identified export says what it is."""
+        return self.path.with_name(f"{self.path.stem}.about.txt")
 
 
 def write(store: Store, who: str, now: Instant, request: ExportRequest) -> Outcome[int]:
     """Write a log file (CSV) of what stands; the number of its rows.
 
     Raises:
+        RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`.
+        StoreError: `store.exists`, `store.export_failed`.
+    """
+    from storage.export.selection import write_selection
+
+    selection, head = _selection(store, request), _head(store, request)
+    rows = write_selection(store, request.path, selection, head)
+    _write_dictionary(request)
+    _note(store, who, now, f"{request.path.name}: {rows} rows")
+    return Outcome(rows, store.head())
+
+
+def write_fhir(store: Store, who: str, now: Instant, request: ExportRequest) -> Outcome[int]:
+    """Write whole episodes as one FHIR R4 Bundle of what stands; the number of its observations.
+
+    Raises:
         RecordError: `episode.unknown`.
         StoreError: `store.exists`, `store.export_failed`.
     """
-    from storage.export.log_csv import write_log_csv
+    from storage.export.fhir import write_fhir
+
+    selection, head = _selection(store, request), _head(store, request)
+    count = write_fhir(store, request.path, episodes=selection.episodes or None, head=head)
+    _note(store, who, now, f"{request.path.name}: {count} observations")
+    return Outcome(count, store.head())
+
+
+def write_deidentified(store: Store, who: str, now: Instant, request: ExportRequest) -> Outcome[Statement]:
+    """Write what stands de-identified, and beside it in words what was left out and what remains.
+
+    Raises:
+        RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`.
+        StoreError: `store.exists`, `store.export_failed`.
+    """
+    from app.export_words import statement_text
+    from storage.export import deidentified
+    from storage.export.whole_file import whole_file
+
+    selection, head = _selection(store, request), _head(store, request)
+    told = deidentified.write_deidentified(store, request.path, selection, head)
+    with whole_file(request.about_path) as file:
+        file.write(statement_text(told))
+    _write_dictionary(request)
+    _note(store, who, now, f"{request.path.name}: {told.rows} rows, de-identified")
+    return Outcome(told, store.head())
+
+
+def _selection(store: Store, request: ExportRequest) -> Selection:
+    from storage.export.selection import Selection
 
     for key in request.episodes:
         check_known(store, key)
-    head = None if request.as_known_at is None else store.head_known_at(request.as_known_at)
-    rows = write_log_csv(store, request.path, episodes=request.episodes or None, head=head)
-    return Outcome(rows, store.head())
+    for name in request.channels:
+        channel(name)
+    if request.start is not None and request.end is not None and request.end <= request.start:
+        raise refuse("export.backwards", start=request.start, end=request.end)
+    return Selection(request.episodes, frozenset(request.channels), request.start, request.end)
+
+
+def _head(store: Store, request: ExportRequest) -> int | None:
+    return None if request.as_known_at is None else store.head_known_at(request.as_known_at)
+
+
+def _write_dictionary(request: ExportRequest) -> None:
+    if request.dictionary:
+        from storage.export.selection import write_dictionary
+
+        write_dictionary(request.dictionary_path, request.channels)
+
+
+def _note(store: Store, who: str, now: Instant, detail: str) -> None:
+    """An export is kept in the chain, where the store can be written to."""
+    if not store.read_only:
+        store.record_event("export", person=who, now=now, detail=detail)

@@ -14,6 +14,8 @@ from storage.store import Store
 _CHUNKS_AT_ONCE = 20_000
 """Blocks of samples in one batch: enough to be quick, few enough to keep memory bounded."""
 
+_LEFT_OUT_NAMED = 1_000
+
 
 def take_in(
     store: Store, intake: Intake, *, by: str, now: Instant, without_refused: bool = False
@@ -35,7 +37,9 @@ def take_in(
     source = intake.source
     if intake.refusals:
         lines = ",".join(str(r) for r in sorted({r.line for r in intake.refusals}))
-        facts = {**source.facts, "left_out_rows": intake.refused_rows, "left_out_lines": lines}
+        values = "; ".join(f"{r.line} {r.column}".strip() for r in intake.refusals[:_LEFT_OUT_NAMED])
+        facts = {**source.facts, "left_out_rows": intake.refused_rows, "left_out_lines": lines,
+                 "left_out_values": values}  # fmt: skip
         source = replace(source, facts=facts)
     intake = replace(intake, source=source)
     honoured = store.imported and store.head() == 0

@@ -44,13 +44,19 @@ def read_table(
         for number, block in enumerate(blocks):
             rows.take(_behind_header(block, opened) if number == 0 else block)
     except UnreadableFileError as error:
-        findings.refuse(error.line, "", error.value, error.message)
-        return judged_intake(SourceFacts("table", path.name), [], SampleSpool(), findings, existing, whole=False)
+        return unreadable_table(path, error)
     if not opened.dialect.encoding_is_sure:
         values = {"encoding": opened.dialect.encoding}
         findings.doubt(1, "", opened.dialect.encoding, Message("table.encoding_assumed", values))
     source = SourceFacts("table", path.name, blocks.sha, blocks.size, _facts(opened, mapping, answers, spool))
     return judged_intake(source, [*rows.entries, *changes.rows()], spool, findings, existing)
+
+
+def unreadable_table(path: Path, error: UnreadableFileError) -> Intake:
+    """The intake of a table that could not be read: nothing but the reason."""
+    findings = Findings()
+    findings.refuse(error.line, "", error.value, error.message)
+    return judged_intake(SourceFacts("table", path.name), [], SampleSpool(), findings, None, whole=False)
 
 
 def check_complete(table: Table, mapping: Mapping, answers: Answers) -> None:

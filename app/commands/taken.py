@@ -1,0 +1,47 @@
+"""`luffmark taken`: the files that were taken in; `--withdraw ID` withdraws one whole."""
+
+from __future__ import annotations
+
+import argparse
+from typing import TYPE_CHECKING, Any
+
+from app.commands.context import Context
+from app.operations import intake as operations
+from core.record.instant import iso
+from core.record.message import refuse
+
+if TYPE_CHECKING:
+    from storage.reading_sources import TakenSource
+
+
+def run(context: Context, args: argparse.Namespace) -> int:
+    """List the files, or withdraw the one whose id begins as given."""
+    with context.open(read_only=not args.withdraw) as store:
+        found = operations.taken(store, context.by, context.now(), None).value
+        if not args.withdraw:
+            text = "\n".join(map(_line, found)) or "No file was taken in."
+            context.answer(text, {"taken": [_json(s) for s in found]})
+            return 0
+        meant = [s for s in found if s.id.startswith(args.withdraw)]
+        if len(meant) != 1:
+            raise refuse("intake.unknown_source", value=args.withdraw, accepted="the beginning of one id of the list")
+        made = operations.withdraw(store, context.by, context.now(), meant[0].id).value
+    text = f"{made.name}: {made.entries} entries and {made.sample_spans} span(s) of device samples withdrawn."
+    if made.kept:
+        text += f" {made.kept} that somebody has corrected since stay as corrected."
+    value = {"file": made.name, "entries": made.entries, "sample_spans": made.sample_spans, "kept": made.kept}
+    context.answer(text, value)
+    return 0
+
+
+def _line(s: TakenSource) -> str:
+    return (
+        f"{s.id[:8]}  {iso(s.recorded_at)}  {s.by or '-'}  {s.kind}  {s.name}: "
+        f"{s.entries:,} entries, {s.samples:,} device samples"
+    )
+
+
+def _json(s: TakenSource) -> dict[str, Any]:
+    return {"id": s.id, "kind": s.kind, "name": s.name, "sha256": s.sha, "size": s.size, "by": s.by,
+            "recorded_at": iso(s.recorded_at), "entries": s.entries, "samples": s.samples,
+            "facts": dict(s.facts)}  # fmt: skip
