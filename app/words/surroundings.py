@@ -12,6 +12,7 @@ _CHAIN = (
 TEMPLATES: Final[dict[str, str]] = {
     "demo.sample_refused": "The sample shift cannot be taken in: {detail}.",
     "error.unexpected": "Something went wrong in the program: {detail}. Nothing was recorded by this step.",
+    "export.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "file.binary": "The file is not text: it holds NUL bytes. Accepted: {accepted}.",
     "file.changed": "The file changed while it was read: take it in again once it is whole.",
     "file.disk_full": "The disk is full: [[{path} ]]could not be written. Make room and try again.",

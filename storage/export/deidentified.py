@@ -33,6 +33,7 @@ from storage.store import Store
 
 HEADER: Final = ("episode", "at", "channel", "value", "unit")
 OLDEST: Final = 90.0
+REMARK: Final = "remark beside a value"
 _SECOND: Final = 1_000_000
 _FROM: Final = parse("2001-01-01T00:00:00+00:00")
 _DAYS: Final = 3652
@@ -75,7 +76,7 @@ def _rows(
     kept: list[tuple[Instant, tuple[str, ...]]] = []
     for e in entries:
         if e.note:
-            removed["note"] += 1
+            removed[REMARK] += 1
         value = _value(CHANNELS[e.channel], e, by, removed)
         if value is not None:
             at = _shifted(e.at, by)

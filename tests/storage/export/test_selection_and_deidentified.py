@@ -95,8 +95,8 @@ def test_the_dictionary_names_every_channel(tmp_path: Path) -> None:
 def test_what_is_left_out_and_what_remains_is_stated(ward: Store, tmp_path: Path) -> None:
     told = write_deidentified(ward, tmp_path / "d.csv", ALL)
     assert (told.episodes, told.rows) == (2, 38 - 2)
-    assert told.removed == {"age (90 and more)": 1, "interface (own words)": 1, "label": 1, "note": 1,
-                            "note (words)": 1}  # fmt: skip
+    assert told.removed == {"age (90 and more)": 1, "interface (own words)": 1, "label": 1,
+                            "note (words)": 1, "remark beside a value": 1}  # fmt: skip
     assert told.remains == {"age": 1, "decided_at": 1, "leak": 30, "note": 1, "ph": 2, "rr": 1}
     text = (tmp_path / "d.csv").read_text("utf-8")
     for gone in ("N4-07", "Bed 7", "HYPERLINK", "daughter", "KL", "2026-03", "home"):
