@@ -24,6 +24,8 @@ from storage.store import Store
 
 SIZES: Final = ((1280, 800), (1920, 1080))
 LINE: Final = "20m ago 22/6 32 rr 27"
+BACK_MIN: Final = 120
+"""How far the picture of a look back looks back."""
 DIALOGS: Final = (
     ("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
     ("table", "table"), ("help", "help"), ("about", "about"),
@@ -97,6 +99,7 @@ def _screens(
     yield "first", window
     window.show_model(SessionModel(session, Runner(opener), window))
     _wait_for(window, lambda: window.feed is not None and window.feed.is_ready)
+    _settle(window)
     yield "ward", window
     yield from _strip(window)
     if window.opened is None or window.opened.model.session.selection is None:
@@ -109,14 +112,15 @@ def _screens(
     pages.episode.stack.point_at(start + (end - start) * 2 // 3)
     _pass_events()
     yield "episode-crosshair", window
-    window.show_page("compare")
-    _settle(window)
-    yield "compare", window
-    window.show_page("handover")
-    _settle(window)
-    yield "handover", window
+    for name in ("map", "compare", "handover", "statistics"):
+        window.show_page(name)
+        _settle(window)
+        yield name, window
     window.show_page("ward")
     yield from _dialogs(window)
+    window.doers.review.step(-BACK_MIN)
+    _settle(window)
+    yield "as-known", window
 
 
 def _strip(window: MainWindow) -> Iterator[tuple[str, QWidget]]:

@@ -177,6 +177,7 @@ class MainWindow(QMainWindow):
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self._place_top()
+        self.progress.place()
 
     def _set_ticks(self) -> None:
         self.actions_by_key["dark"].setChecked(self.preferences.theme == "dark")
@@ -217,7 +218,7 @@ class MainWindow(QMainWindow):
         self.opened = Opened(model, feed, episode_feed, Pages(self.theme), LogStrip(self.theme, model))
         self._column.addWidget(self.known)
         self._column.addWidget(self.opened.pages, 1)
-        self._column.addWidget(self.progress)
+        self.progress.stand_over(self.opened.pages)
         foot = QVBoxLayout()
         px = self.theme.px
         foot.setContentsMargins(px(12), 0, px(12), px(8))

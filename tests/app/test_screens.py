@@ -7,7 +7,7 @@ from app.theme import THEMES
 
 EXPECTED = {
     "first", "ward", "strip", "episode", "episode-crosshair", "compare", "handover", "explain", "panels",
-    "new-episode", "correct", "table", "help", "about",
+    "new-episode", "correct", "map", "statistics", "as-known", "table", "help", "about",
 }  # fmt: skip
 
 
