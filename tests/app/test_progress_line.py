@@ -21,10 +21,11 @@ def shown(qtbot, monkeypatch):
 
 
 def test_short_work_shows_nothing(qtbot, monkeypatch):
-    _, _, line = shown(qtbot, monkeypatch)
+    parent, _, line = shown(qtbot, monkeypatch)
     line.busy_changed(True)
     line.busy_changed(False)
     qtbot.wait(30)
+    assert parent.isVisible()
     assert not line.isVisible()
 
 
