@@ -11,7 +11,8 @@ _DOUBT = (
 _POPULATION = "validated in: {population}"
 
 EVIDENCE: Final[dict[str, str]] = {
-    "evidence.after_beta_agonist": "A beta-agonist was given at {at:time}[[ ({text})]]: lactate may come from it.",
+    "evidence.after_beta_agonist":
+        "A beta-agonist or a nebuliser was given at {at:time}[[ ({text})]]: lactate may come from it.",
     "evidence.ceiling": "Ceiling of care: {ceiling}.",
     "evidence.change": "{quantity:name} {before:q} ({before_at:time}) to {after:q} ({at:time}), {change:q+}"
         "[[, noise {noise:qn}]].",

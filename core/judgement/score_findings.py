@@ -63,6 +63,11 @@ def _updated(ctx: Context, gas: GasFigure, walls: Walls) -> ScoreFigure:
     return replace(figure, enabled=on, caveat=score.notes[0])
 
 
+def hacor_updated_at(ctx: Context, gas: GasFigure) -> ScoreFigure:
+    """Updated HACOR at any gas of a judged context; without figures until the ward switches it on."""
+    return _updated(ctx, gas, barriers(tuple(s.at for a in ctx.anchors for s in a.steps), ctx.support))
+
+
 def _is(ctx: Context, indication: str) -> bool | None:
     return None if ctx.indication is None else ctx.indication == indication
 

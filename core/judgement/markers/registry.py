@@ -40,6 +40,7 @@ SUPPORT: Final = frozenset(
 )  # fmt: skip
 RANGE: Final = frozenset({"spo2", "target_spo2_low", "target_spo2_high", "indication", "paco2"})
 RATE: Final = frozenset({"rr", "rr_total"})
+RISK_FACTS: Final = frozenset({"sofa", "pneumonia", "pulmonary_ards", "immunosuppression", "septic_shock"})
 LEAK: Final = frozenset({"leak", "leak_definition", "rr_total", "vte", "mv"})
 
 
@@ -73,7 +74,7 @@ _ALL = (
     _of(consciousness.rate_below_12_drowsy, frozenset({"rr", "gcs", "acvpu"})),
     _of(co2.rate_falling_worse_gas, JUDGED),
     _of(oxygenation.pao2_below_45_on_highest_oxygen, GAS | SUPPORT),
-    _of(scores.hacor_above_8, JUDGED | {"gcs", "hr", "indication"}, asks=True),
+    _of(scores.hacor_8_or_more, JUDGED | {"gcs", "hr", "indication"}, asks=True),
     _of(scores.hacor_above_5, JUDGED | {"gcs", "hr", "indication"}, asks=True),
     _of(oxygenation.pf_low_at_1h, GAS | SUPPORT | {"indication"}, asks=True),
     _of(circulation.spo2_fall_after_pressure, RANGE | SUPPORT | LEAK),
@@ -102,6 +103,7 @@ _ALL = (
     _of(oxygenation.sf_below_985, GAS | SUPPORT | RANGE | LEAK, asks=True),
     _of(oxygenation.fio2_need_rising, SUPPORT | RANGE),
     _of(scores.hacor_above_5_later, JUDGED | {"gcs", "hr", "indication"}, asks=True),
+    _of(scores.hacor_updated_above_10_5, JUDGED | RISK_FACTS | {"gcs", "hr", "indication"}, asks=True),
     _of(saturation.spo2_below_range, RANGE),
     _of(saturation.over_oxygenation, RANGE | SUPPORT),
     _of(circulation.sbp_below_90, frozenset({"sbp"})),

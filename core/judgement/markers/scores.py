@@ -9,9 +9,10 @@ from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
 from core.judgement.markers.spells import Point, Spell, from_points
 from core.judgement.policy_sections import MarkerRule
+from core.judgement.score_findings import hacor_updated_at
 from core.judgement.scores import failure_percent
 from core.judgement.shapes import GasFigure, ScoreFigure
-from core.record.instant import MINUTE
+from core.record.instant import MINUTE, Instant
 from core.record.message import Message, Value
 
 
@@ -44,9 +45,28 @@ def hacor_above_5_later(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     return _score_spells(seen, rule, lambda minutes: bool(minutes) and min(minutes) > rule.limits["from_min"])
 
 
-def hacor_above_8(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """HACOR above 7: the band in which nine of ten failed, from 45 min after the start on."""
+def hacor_8_or_more(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """HACOR of 8 or more (above 7): the band in which nine of ten failed, from 45 min after the start on."""
     return _score_spells(seen, rule, lambda minutes: bool(minutes) and max(minutes) >= rule.limits["from_min"])
+
+
+def hacor_updated_above_10_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """Updated HACOR above 10.5 at 1-2 h (failure in one of two), by its lowest possible points; off until the ward
+    switches the score on, since its added points are from memory."""
+    if not seen.policy.scores.hacor_updated:
+        return []
+    low, high, limit = rule.limits["from_min"], rule.limits["to_min"], rule.limits["points"]
+    points = []
+    for gas, _, minutes in _hacor(seen):
+        score = hacor_updated_at(seen.ctx, gas)
+        over = hacor_limit_passed(score, limit)
+        if over and not any(low <= m <= high for m in minutes):
+            points.append(Point(gas.at, None))
+            continue
+        fits = score.population == "inside" and inside(seen, rule.population, gas.at)
+        told = (_score_told("hacor_updated", score, limit, gas.at), *say.gas_doubts(gas)) if over else ()
+        points.append(Point(gas.at, over and (fits or rule.outside == "remark"), told, not fits))
+    return from_points(points)
 
 
 def _score_spells(
@@ -67,16 +87,20 @@ def _score_spells(
 
 
 def _told(gas: GasFigure, score: ScoreFigure, limit: float) -> tuple[Message, ...]:
-    values: dict[str, Value] = {
-        "score": "hacor", "points": score.points, "lowest": score.lowest, "highest": score.highest,
-        "limit": limit, "at": gas.at, "missing": ", ".join(score.missing),
-    }  # fmt: skip
-    said = [Message("evidence.score", values)]
+    said = [_score_told("hacor", score, limit, gas.at)]
     if score.lowest is not None:
         percent = failure_percent(score.lowest)
         failed: dict[str, Value] = {"score": "hacor", "points": score.lowest, "percent": percent}
         said.append(Message("evidence.failed_percent", failed))
     return (*said, *say.gas_doubts(gas))
+
+
+def _score_told(name: str, score: ScoreFigure, limit: float, at: Instant) -> Message:
+    values: dict[str, Value] = {
+        "score": name, "points": score.points, "lowest": score.lowest, "highest": score.highest,
+        "limit": limit, "at": at, "missing": ", ".join(score.missing),
+    }  # fmt: skip
+    return Message("evidence.score", values)
 
 
 def to_complete(seen: Observed) -> tuple[GasFigure, ScoreFigure] | None:

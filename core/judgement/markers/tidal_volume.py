@@ -74,7 +74,7 @@ def vt_not_trusted(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
 
 
 def vt_high_hypoxaemic(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """Tidal volume above 9.5 mL/kg predicted, two quarters of an hour in a row, with P/F at or below 200.
+    """Tidal volume above 9.5 mL/kg predicted, two quarters of an hour in a row, P/F at most 200, in the first 4 h.
 
     Volumes that leak makes doubtful are left out. Without height and sex there is no predicted weight: silent.
     """
@@ -83,7 +83,7 @@ def vt_high_hypoxaemic(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     if isnan(weight):
         return []
     poor = (g for g in seen.gases if g.pf_mmHg is not None and g.pf_mmHg <= rule.limits["pf"])
-    if not any(inside(seen, rule.population, g.at) for g in poor):
+    if not any(inside(seen, rule.population, g.at) or rule.outside == "remark" for g in poor):
         return []
     found = seen.once(volumes)
     usable = (found.codes == Trust.TRUSTED) | (found.codes == Trust.NOT_KNOWN)
@@ -108,9 +108,16 @@ def _with_pf(seen: Observed, rule: MarkerRule, at: int, per_kg: float) -> Point:
     gas = next((g for g in reversed(seen.gases) if g.at <= at and g.pf_mmHg is not None), None)
     if gas is None or gas.pf_mmHg is None or at - gas.at > rule.limits["pf_within_h"] * HOUR:
         return Point(at, None)
-    met = gas.pf_mmHg <= rule.limits["pf"] and inside(seen, rule.population, at)
+    fits = inside(seen, rule.population, at) and _early(seen, rule, at)
+    met = gas.pf_mmHg <= rule.limits["pf"] and (fits or rule.outside == "remark")
     told = [say.value_is("vte_per_kg", round(per_kg, 2), say.ABOVE, rule.limits["ml_per_kg"], at),
             say.value_is("pf", gas.pf_mmHg, say.AT_MOST, rule.limits["pf"], gas.at)]  # fmt: skip
     if leak_definition(seen.ctx) is None:
         told.append(say.unknown("leak"))
-    return Point(at, met, (*told, *say.gas_doubts(gas)))
+    return Point(at, met, (*told, *say.gas_doubts(gas)), not fits)
+
+
+def _early(seen: Observed, rule: MarkerRule, at: int) -> bool:
+    """Within the first hours on the mask, in which it was validated."""
+    start = seen.support.start
+    return start is not None and seen.support.hours_on_mask(start, at) <= rule.limits["support_h"]

@@ -54,3 +54,12 @@ def test_the_leak_and_the_overdue_gas_are_found():
     assert any(f.marker == "leak_over_limit" for f in said(night()[leak], END).flags)
     overdue = next(k for k, e in truth().items() if e["kind"] == "overdue_gas")
     assert any(f.marker == "gas_overdue" and f.ended_at is None for f in said(night()[overdue], END).flags)
+
+
+@pytest.mark.parametrize("key", sorted(truth()))
+def test_as_the_night_goes_on_no_flag_goes_in_silence(key):
+    """Nothing is corrected here: what was flagged at any hour is still in the list at the end, with its beginning."""
+    at_the_end = {(f.marker, f.since) for f in said(night()[key], END).flags}
+    for hours in range(1, 10):
+        then = said(night()[key], END - hours * HOUR).flags
+        assert {(f.marker, f.since) for f in then} <= at_the_end

@@ -79,11 +79,14 @@ POOR = "01:30 ph 7.42 paco2 36 pao2 100 site arterial\n"  # P/F 200
         (MAN.replace("pneumonia", "copd") + POOR + "device vte 02:00 03:00 680 680", ""),
         (MAN + "01:00 leak_definition unintentional\n" + POOR
          + "device leak 02:00 03:00 40 40\ndevice vte 02:00 03:00 680 680", ""),  # leak makes it doubtful
-        (MAN + POOR + "device vte 08:00 09:00 680 680", ""),  # the gas is stale
+        (MAN + POOR + "device vte 08:00 09:00 680 680", ""),  # the gas is stale, and the first hours are over
+        (MAN + POOR + "device vte 04:30 05:20 680 680", "05:00-"),  # 4 h on the mask
+        (MAN + POOR + "device vte 04:45 05:30 680 680", ""),  # later than it was validated
     ],
 )  # fmt: skip
 def test_tidal_volume_above_9_5_in_hypoxaemic_failure(log, expected):
-    assert met("vt_high_hypoxaemic", log, "09:00" if "08:00" in log else "02:40") == expected
+    as_of = "09:00" if "08:00" in log else "05:20" if "05:20" in log else "05:30" if "05:30" in log else "02:40"
+    assert met("vt_high_hypoxaemic", log, as_of) == expected
 
 
 def test_a_leak_nobody_defined_is_said_beside_the_volume():

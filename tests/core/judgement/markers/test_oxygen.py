@@ -7,7 +7,8 @@ criteria (PaO2 below 6 kPa). Minutes and counts of readings are common practice,
 
 import pytest
 
-from tests.support.flag_cases import BEFORE, COPD, LUNG, START, met, told, with_rule
+from core.judgement.flags import evaluate
+from tests.support.flag_cases import BEFORE, COPD, LUNG, START, ctx, met, told, with_rule
 
 LUNG_START = START.replace("fio2 30", "fio2 50")
 LUNG_BEFORE = "00:30 ph 7.45 paco2 34 pao2 60 site arterial gas_fio2 0.4 rr 34 gcs 15\n"
@@ -195,5 +196,12 @@ def test_fio2_that_raised_spo2_is_no_rising_need():
 
 
 def test_a_ward_can_ask_for_a_remark_outside_the_population():
-    log = COPD + LUNG_BEFORE + LUNG_START + "device vte 02:00 04:00 900 900"
-    assert met("vt_high_hypoxaemic", log, policy=with_rule("vt_high_hypoxaemic", on=True)) == ""
+    gas = "01:30 ph 7.42 paco2 36 pao2 90 site arterial\n"
+    log = COPD + LUNG_BEFORE + LUNG_START + gas + "device vte 02:00 04:00 900 900"
+    log = log.replace("indication", "sex male height 175 indication")
+    rule = with_rule("vt_high_hypoxaemic", outside="remark")
+    assert met("vt_high_hypoxaemic", log, "02:40") == ""
+    assert met("vt_high_hypoxaemic", log, "02:40", rule) == "02:30-"
+    (flag,) = [f for f in evaluate(ctx(log, "02:40", rule)) if f.marker == "vt_high_hypoxaemic"]
+    assert (flag.tier, flag.outside_population) == ("remark", True)
+    assert flag.evidence[-1].values["population"] == "hypoxaemic, not hypercapnic"

@@ -6,6 +6,7 @@ import pytest
 
 from core.judgement.markers.news2_course import news2_course
 from core.judgement.markers.observed import Observed
+from core.judgement.policy import read_policy, shipped_text
 from core.judgement.scores import breathes_oxygen, news2
 from tests.support.flag_cases import COPD, LUNG, START, ctx, due, met, told
 
@@ -62,17 +63,30 @@ def test_what_is_missing_beside_a_sure_flag_is_named():
     ],
 )
 def test_silent_outside_its_population(log):
-    assert met("hacor_above_5", log) == met("hacor_above_8", log) == ""
+    assert met("hacor_above_5", log) == met("hacor_8_or_more", log) == ""
     assert due(log, "02:10", "complete_score") == []
 
 
 def test_bands_and_later_gases():
-    assert met("hacor_above_8", gas(60, "rr 36 hr 125 gcs 15")) == "02:00-"  # 5 + 2 + 1
-    assert met("hacor_above_8", gas(60, "rr 36 hr 110 gcs 15")) == ""  # 7
+    assert met("hacor_8_or_more", gas(60, "rr 36 hr 125 gcs 15")) == "02:00-"  # 5 + 2 + 1
+    assert met("hacor_8_or_more", gas(60, "rr 36 hr 110 gcs 15")) == ""  # 7
     later = gas(70, "rr 36 hr 110 gcs 15", "08:00")
     assert met("hacor_above_5", later) == ""
     assert met("hacor_above_5_later", later) == "08:00-"
     assert met("hacor_above_5_later", gas(70, "rr 36 hr 110 gcs 15")) == ""
+
+
+def test_updated_hacor_is_silent_until_a_ward_switches_it_on():
+    facts = "00:20 sofa 8 pneumonia yes pulmonary_ards yes immunosuppression no septic_shock no\n"
+    log = facts + gas(60, "rr 36 hr 110 gcs 15")  # 7 + 4 + 2.5 + 3
+    assert met("hacor_updated_above_10_5", log) == ""
+    switched_on = read_policy(shipped_text().replace("hacor_updated = false", "hacor_updated = true"))
+    assert met("hacor_updated_above_10_5", log, policy=switched_on) == "02:00-"
+    assert met("hacor_updated_above_10_5", log.replace("sofa 8", "sofa 0").replace("ards yes", "ards no"),
+               policy=switched_on) == ""  # fmt: skip
+    assert met("hacor_updated_above_10_5", log.replace("sofa 8 ", ""), policy=switched_on) == "02:00-"  # 12.5 is sure
+    assert met("hacor_updated_above_10_5", log.replace("sofa 8 pneumonia yes pulmonary_ards yes", "pneumonia yes"),
+               policy=switched_on) == ""  # fmt: skip
 
 
 SET = "{} rr {} spo2 {} hr 80 sbp 120 temp 37.0 acvpu alert\n"
