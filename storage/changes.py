@@ -14,13 +14,17 @@ from storage.settings_kept import layout_revision
 
 @dataclass(frozen=True, slots=True)
 class Changes:
-    """What changed after a sequence. `layout_revision` rises with each layout kept or forgotten."""
+    """What changed after a sequence. `layout_revision` rises with each layout kept or forgotten.
+
+    `erased` says that an episode was removed; which one is not told, since nothing of it is kept.
+    """
 
     head: int
     episodes: frozenset[str]
     channels: Mapping[str, frozenset[str]]
     policy_changed: bool = False
     documents_changed: bool = False
+    erased: bool = False
     layout_revision: int = 0
 
 
@@ -46,6 +50,7 @@ def changes_between(connection: sa.Connection, seq: int) -> Changes:
         {k: frozenset(v) for k, v in channels.items()},
         _any_after(connection, s.policy, seq),
         _any_after(connection, s.document, seq),
+        _any_after(connection, s.erasure, seq),
         revision,
     )
 

@@ -71,6 +71,17 @@ class DraftPolicy:
 
 
 @dataclass(frozen=True, slots=True)
+class DraftErasure:
+    """What the chain keeps of a row that is removed: where it stood and its digest."""
+
+    table: str
+    seq: int
+    batch: int
+    digest: str
+    reason: str
+
+
+@dataclass(frozen=True, slots=True)
 class DraftBatch:
     """Everything one operation adds to the ledger: it is taken whole or not at all."""
 
@@ -82,6 +93,7 @@ class DraftBatch:
     documents: tuple[DraftDocument, ...] = ()
     policies: tuple[DraftPolicy, ...] = ()
     events: tuple[DraftEvent, ...] = ()
+    erasures: tuple[DraftErasure, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -169,6 +169,15 @@ def integrity_findings(connection: sa.Connection, *, encrypted: bool) -> list[st
     return found
 
 
+def fold_journal(database: Database) -> None:
+    """Fold the journal into the file and empty it, so that it keeps nothing that was removed.
+
+    Another program that reads may hold part of it back; it is folded when that one closes.
+    """
+    with database.engine.connect() as connection:
+        connection.connection.cursor().execute("PRAGMA wal_checkpoint(TRUNCATE)")
+
+
 def limit_pages(database: Database, pages: int) -> None:
     """Keep the file from growing past a number of pages (for a quota, and to prove what a full disk does)."""
 

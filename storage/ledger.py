@@ -97,6 +97,9 @@ def _rows(connection: sa.Connection, draft: DraftBatch, first: int) -> list[tupl
                          "sha": _sha(doc.data)})  # fmt: skip
     for e in draft.events:
         add(s.person_event, {"person": e.person, "event": e.event, "detail": e.detail})
+    for gone in draft.erasures:
+        add(s.erasure, {"removed_table": gone.table, "removed_seq": gone.seq, "removed_batch": gone.batch,
+                        "removed_digest": gone.digest, "reason": gone.reason})  # fmt: skip
     return made
 
 

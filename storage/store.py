@@ -5,7 +5,7 @@ A store is safe to share between threads: writers take turns, readers see one co
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from types import TracebackType
@@ -19,8 +19,8 @@ from core.record.instant import Instant
 from core.record.knowledge import standing
 from core.record.message import Message, refuse
 from core.record.samples import DeviceSamples
-from storage import documents, keys, opening, settings_kept
 from storage import episode_index as index
+from storage import erasure, keys, opening
 from storage import reading_ledger as reading
 from storage import reading_sources as taken
 from storage import schema as s
@@ -30,17 +30,16 @@ from storage.chunks import hour_blocks
 from storage.draft_batch import (
     DraftBatch,
     DraftChunk,
-    DraftDocument,
     DraftEntry,
     DraftEvent,
-    DraftPolicy,
     Receipt,
     SourceFacts,
 )
-from storage.engine import BUSY_SECONDS
+from storage.engine import BUSY_SECONDS, fold_journal
 from storage.errors import StoreError, store_error
 from storage.ledger import append_batch, replaced_entries
 from storage.rules import Replaced, is_device_channel
+from storage.store_kept import StoreKept
 
 __all__ = ["Changes", "Receipt", "SourceFacts", "Store", "StoreError"]
 
@@ -49,11 +48,8 @@ _PRINTED_DIGITS = 16
 
 
 @dataclass(frozen=True)
-class Store:
+class Store(StoreKept):
     """An open store. Make one with `create` or `open`; close it, or use it as a context manager."""
-
-    path: Path
-    _opened: opening.Opened
 
     @classmethod
     def create(
@@ -156,7 +152,11 @@ class Store:
     def head_known_at(self, known_at: Instant) -> int:
         """The largest sequence recorded by a moment; 0 when nothing had been."""
         b = s.batch.c  # recording times never step back, so the newest batch by then has the largest sequence
-        query = sa.select(b.last_seq).where(b.recorded_at <= known_at).order_by(b.recorded_at.desc(), b.seq.desc())
+        query = (
+            sa.select(b.last_seq)
+            .where(b.recorded_at <= known_at)
+            .order_by(b.recorded_at.desc(), b.seq.desc())
+        )
         with self._opened.database.read() as connection:
             return int(connection.execute(query.limit(1)).scalar() or 0)
 
@@ -203,6 +203,22 @@ class Store:
         """Chain what a person did that is no entry: a sign-in, a print, an export."""
         draft = DraftBatch(person, event, events=(DraftEvent(person, event, detail),))
         return self.append_drafts((draft,), (now,))[0]
+
+    def erase_episode(self, episode: str, *, reason: str, by: str, now: Instant) -> Receipt:
+        """Remove every entry and sample of an episode for good; their digests stay in the chain.
+
+        Raises:
+            RecordError: `erasure.unknown_episode`, `erasure.no_reason`.
+        """
+        with self._opened.database.write() as connection:
+            gone = erasure.erasures_of(connection, episode, reason)
+            kept = erasure.kept_elsewhere(connection, episode)
+            draft = DraftBatch(by, "erase", kept, erasures=gone)
+            receipt = append_batch(connection, draft, now)
+            index.note_batch(connection, draft, receipt)
+            erasure.remove(connection, episode)
+        fold_journal(self._opened.database)
+        return receipt
 
     # -- reading -------------------------------------------------------------------------------------
 
@@ -278,66 +294,6 @@ class Store:
         with self._opened.database.read() as connection:
             return replaced_entries(connection, [entry_id]).get(entry_id)
 
-    # -- what is kept beside the entries ---------------------------------------------------------------
-
-    def layout(self, name: str) -> str | None:
-        """A layout's text, or None."""
-        return self.layouts().get(name)
-
-    def layouts(self) -> Mapping[str, str]:
-        """Every layout's text by name."""
-        with self._opened.database.read() as connection:
-            return settings_kept.layouts(connection)
-
-    def put_layout(self, name: str, text: str | None) -> None:
-        """Keep a layout, or forget it (None). Layouts are outside the ledger."""
-        with self._opened.database.write() as connection:
-            settings_kept.put_layout(connection, name, text)
-
-    def draft(self, name: str) -> str | None:
-        """What was being typed under a name, or None."""
-        return self.drafts().get(name)
-
-    def drafts(self) -> Mapping[str, str]:
-        """Every draft's text by name."""
-        with self._opened.database.read() as connection:
-            return settings_kept.drafts(connection)
-
-    def put_draft(self, name: str, text: str | None, now: Instant = 0) -> None:
-        """Keep what is being typed, or forget it (None). Drafts are outside the ledger, encrypted with it."""
-        with self._opened.database.write() as connection:
-            settings_kept.put_draft(connection, name, text, now)
-
-    def policy(self, head: int | None = None) -> tuple[str, str] | None:
-        """The (hash, text) of the policy in force at a sequence, or None while the store has none."""
-        with self._opened.database.read() as connection:
-            return documents.policy(connection, _ALL if head is None else head)
-
-    def put_policy(self, text: str, hash: str, by: str, now: Instant) -> Receipt:
-        """Put a policy in force."""
-        draft = DraftBatch(by, "policy", policies=(DraftPolicy(hash, text),))
-        return self.append_drafts((draft,), (now,))[0]
-
-    def put_document(self, kind: str, name: str, data: bytes, by: str, now: Instant) -> str:
-        """Keep a document as it is, in the chain; its id."""
-        doc = DraftDocument(kind, name, data)
-        self.append_drafts((DraftBatch(by, "document", documents=(doc,)),), (now,))
-        return doc.id
-
-    def documents(self) -> tuple[documents.DocumentFacts, ...]:
-        """What documents are kept, in order."""
-        with self._opened.database.read() as connection:
-            return documents.listed(connection)
-
-    def document(self, document_id: str) -> bytes:
-        """A document's bytes.
-
-        Raises:
-            StoreError: `document.unknown`, or `document.damaged` when they are not those that were kept.
-        """
-        with self._opened.database.read() as connection:
-            return documents.data(connection, document_id)
-
     # -- care ----------------------------------------------------------------------------------------
 
     def verify(self) -> tuple[Message, ...]:
@@ -357,9 +313,7 @@ class Store:
         backup(self.path, self._opened.key, Path(path))
 
     @classmethod
-    def restore(
-        cls, backup_path: Path | str, new_path: Path | str, *, passphrase: str | None = None
-    ) -> None:
+    def restore(cls, backup_path: Path | str, new_path: Path | str, *, passphrase: str | None = None) -> None:
         """Make a new store of a backup; an existing file is never overwritten. One that is damaged is refused:
         a plain one always, an encrypted one when its passphrase is given.
 

@@ -1,0 +1,83 @@
+"""What a store keeps beside its entries: layouts, drafts, policies, documents."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+
+from core.record.instant import Instant
+from storage import documents, opening, settings_kept
+from storage.draft_batch import DraftBatch, DraftDocument, DraftPolicy, Receipt
+
+_ALL = 2**62
+
+
+@dataclass(frozen=True)
+class StoreKept:
+    """The part of an open store that keeps texts and documents. `storage.store.Store` is the whole."""
+
+    path: Path
+    _opened: opening.Opened
+
+    def append_drafts(self, drafts: Sequence[DraftBatch], times: Sequence[Instant]) -> list[Receipt]:
+        """Add batches to the ledger."""
+        raise NotImplementedError
+
+    def layout(self, name: str) -> str | None:
+        """A layout's text, or None."""
+        return self.layouts().get(name)
+
+    def layouts(self) -> Mapping[str, str]:
+        """Every layout's text by name."""
+        with self._opened.database.read() as connection:
+            return settings_kept.layouts(connection)
+
+    def put_layout(self, name: str, text: str | None) -> None:
+        """Keep a layout, or forget it (None). Layouts are outside the ledger."""
+        with self._opened.database.write() as connection:
+            settings_kept.put_layout(connection, name, text)
+
+    def draft(self, name: str) -> str | None:
+        """What was being typed under a name, or None."""
+        return self.drafts().get(name)
+
+    def drafts(self) -> Mapping[str, str]:
+        """Every draft's text by name."""
+        with self._opened.database.read() as connection:
+            return settings_kept.drafts(connection)
+
+    def put_draft(self, name: str, text: str | None, now: Instant = 0) -> None:
+        """Keep what is being typed, or forget it (None). Drafts are outside the ledger, encrypted with it."""
+        with self._opened.database.write() as connection:
+            settings_kept.put_draft(connection, name, text, now)
+
+    def policy(self, head: int | None = None) -> tuple[str, str] | None:
+        """The (hash, text) of the policy in force at a sequence, or None while the store has none."""
+        with self._opened.database.read() as connection:
+            return documents.policy(connection, _ALL if head is None else head)
+
+    def put_policy(self, text: str, hash: str, by: str, now: Instant) -> Receipt:
+        """Put a policy in force."""
+        draft = DraftBatch(by, "policy", policies=(DraftPolicy(hash, text),))
+        return self.append_drafts((draft,), (now,))[0]
+
+    def put_document(self, kind: str, name: str, data: bytes, by: str, now: Instant) -> str:
+        """Keep a document as it is, in the chain; its id."""
+        doc = DraftDocument(kind, name, data)
+        self.append_drafts((DraftBatch(by, "document", documents=(doc,)),), (now,))
+        return doc.id
+
+    def documents(self) -> tuple[documents.DocumentFacts, ...]:
+        """What documents are kept, in order."""
+        with self._opened.database.read() as connection:
+            return documents.listed(connection)
+
+    def document(self, document_id: str) -> bytes:
+        """A document's bytes.
+
+        Raises:
+            StoreError: `document.unknown`, or `document.damaged` when they are not those that were kept.
+        """
+        with self._opened.database.read() as connection:
+            return documents.data(connection, document_id)
