@@ -36,6 +36,8 @@ TEMPLATES: Final[dict[str, str]] = {
         "'{episode}' cannot name an episode: one word of at most {accepted} printable characters is accepted.",
     "episode.exists": "Episode {episode} exists already. Name {accepted}.",
     "episode.unknown": "There is no episode '{episode}' in this store. Known: {accepted}.",
+    "erasure.no_reason": "Removing an episode needs its reason: {accepted}.",
+    "erasure.unknown_episode": "There is nothing of episode '{episode}' to remove. Accepted: {accepted}.",
     "flag.no_reason": "Settling a flag needs its reason: {accepted}.",
     "flag.not_open": "The flag '{marker:marker}' is not open: it is {state}.",
     "flag.unknown": "Episode {episode} has no flag {flag}.",
