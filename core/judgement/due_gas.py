@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from bisect import bisect_left
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 from core.judgement.due_item import Item
 from core.judgement.markers.observed import Observed
@@ -83,11 +83,16 @@ def _until(seen: Observed, rule: DueRule, response: ResponseFigure) -> Instant:
 
 
 def _item(seen: Observed, rule: DueRule, pending: _Pending, gas: GasFigure | None) -> Item:
-    item = Item("gas", pending.because, min(pending.counts_from, pending.until), pending.until, rule.soon_min,
-                anchor_at=pending.anchor_at)  # fmt: skip
-    if gas is not None:
-        return replace(item, done_at=gas.at, done_by=gas.ids[0] if gas.ids else None)
-    return replace(item, awaiting_since=_sent(seen, rule, pending.counts_from))
+    return Item(
+        "gas", pending.because, min(pending.counts_from, pending.until), pending.until, rule.soon_min,
+        pending.anchor_at, *_closed(gas),
+        awaiting_since=_sent(seen, rule, pending.counts_from) if gas is None else None,
+    )  # fmt: skip
+
+
+def _closed(gas: GasFigure | None) -> tuple[Instant | None, str | None]:
+    """When a gas closed an item, and the entry that did."""
+    return (None, None) if gas is None else (gas.at, gas.ids[0] if gas.ids else None)
 
 
 def _sent(seen: Observed, rule: DueRule, since: Instant) -> Instant | None:
@@ -179,13 +184,11 @@ def repeat_items(seen: Observed) -> list[Item]:
         if gas.at >= base + int(rule.from_min * MINUTE):
             base = gas.at
         because = Message("due.repeat_gas", {"gas_at": gas.at, "ph": gas.ph, "state": gas.state})
-        item = Item("repeat_gas", because, base + int(rule.from_min * MINUTE), base + int(rule.until_min * MINUTE),
-                    rule.soon_min, anchor_at=base)  # fmt: skip
-        if later is not None:
-            item = replace(item, done_at=later.at, done_by=later.ids[0] if later.ids else None)
-        elif seen.support.start is not None:
-            item = replace(item, awaiting_since=_sent(seen, rule, gas.at + MINUTE))
-        items.append(item)
+        sent = _sent(seen, rule, gas.at + MINUTE) if later is None else None
+        items.append(
+            Item("repeat_gas", because, base + int(rule.from_min * MINUTE), base + int(rule.until_min * MINUTE),
+                 rule.soon_min, base, *_closed(later), awaiting_since=sent)
+        )  # fmt: skip
     return items
 
 
@@ -211,8 +214,5 @@ def confirm_items(seen: Observed) -> Iterator[Item]:
             continue
         later = next((g for g in seen.gases if g.at >= gas.at), None)
         because = Message("due.confirm_arterially", {"gas_at": gas.at, "ph": gas.ph})
-        item = Item("arterial_gas", because, gas.at + int(rule.from_min * MINUTE),
-                    gas.at + int(rule.until_min * MINUTE), rule.soon_min)  # fmt: skip
-        if later is not None:
-            item = replace(item, done_at=later.at, done_by=later.ids[0] if later.ids else None)
-        yield item
+        yield Item("arterial_gas", because, gas.at + int(rule.from_min * MINUTE),
+                   gas.at + int(rule.until_min * MINUTE), rule.soon_min, None, *_closed(later))  # fmt: skip

@@ -95,6 +95,10 @@ def _take(history: History, entry: Entry, told: dict[str, Any]) -> None:
             history.seen_by, history.seen_at = entry.by, entry.at
         case "settled":
             history.settled_by, history.settled_at, history.settled_why = entry.by, entry.at, entry.reason
+        case "not seen":
+            history.seen_by = history.seen_at = None
+        case "reopened":
+            history.settled_by = history.settled_at = history.settled_why = None
 
 
 def transitions(
@@ -127,7 +131,8 @@ def transitions(
 
 
 def word_on(flag: FlagFigure, words: str, by: str, now: Instant, episode_key: str, reason: str = "") -> NewEntry:
-    """A person's word on a flag: `seen` or `settled` (with the reason), as an entry."""
+    """A person's word on a flag, as an entry: `seen`, `settled` (with the reason), or their undoing: `not seen`,
+    `reopened`."""
     raw = _json({"flag_id": flag.flag_id, "since": flag.since, "policy": flag.policy, "engine": ENGINE})
     return NewEntry(episode_key, flag.marker, now, words=words, raw=raw, by=by, action=Action.FLAG, reason=reason)
 

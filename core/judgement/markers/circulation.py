@@ -16,6 +16,7 @@ from core.judgement.sustained import spells as crossings
 from core.record.episode import Series
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
+from core.record.samples import Times, Values
 
 BETA_AGONIST = re.compile(r"salbutamol|albuterol|terbutaline|formoterol|adrenaline|epinephrine", re.IGNORECASE)
 NEBULISER = re.compile(r"nebuli[sz]|\bnebs?\b", re.IGNORECASE)
@@ -110,20 +111,26 @@ def raised_pressures(seen: Observed) -> list[Instant]:
 def spo2_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """A sudden fall of SpO2, to below its range, within the hour after a pressure was raised."""
     spo2 = seen.machine("spo2")
-    below = spo2.v < seen.targets(spo2.t)[0]
     found: list[Spell] = []
     raised = np.array(seen.once(raised_pressures), np.int64)
-    firsts = np.searchsorted(spo2.t, raised)
+    starts, firsts = np.searchsorted(spo2.t, raised - 15 * MINUTE), np.searchsorted(spo2.t, raised)
     lasts = np.searchsorted(spo2.t, raised + int(rule.limits["within_min"] * MINUTE), side="right")
-    starts = np.searchsorted(spo2.t, raised - 15 * MINUTE)
-    for at, k, i, j in zip(raised.tolist(), starts.tolist(), firsts.tolist(), lasts.tolist(), strict=True):
-        before = spo2.v[k:i]
-        if not before.size or not below[i:j].any():
-            continue
-        enough = spo2.v[i:j].min() + rule.limits["points"]
-        if enough <= before.max() and enough <= (median := float(np.median(before))):
-            found += _falls(seen, rule, spo2.cut(slice(i, None)), median, at)
+    lowest, highest = _lowest(spo2.v, firsts, lasts), -_lowest(-spo2.v, starts, firsts)
+    for k in np.flatnonzero(lowest + rule.limits["points"] <= highest).tolist():
+        median = float(np.median(spo2.v[starts[k] : firsts[k]]))
+        if lowest[k] + rule.limits["points"] <= median:
+            found += _falls(seen, rule, spo2.cut(slice(int(firsts[k]), None)), median, int(raised[k]))
     return united(found)
+
+
+def _lowest(v: Values, firsts: Times, ends: Times) -> Values:
+    """The lowest value of each window [first, end), shapes (n,); infinite for an empty one."""
+    out = np.full(firsts.shape, np.inf)
+    held = firsts < ends
+    if held.any():
+        edges = np.column_stack((firsts[held], ends[held])).ravel()
+        out[held] = np.minimum.reduceat(np.append(v, np.inf), edges)[::2]
+    return out
 
 
 def _falls(seen: Observed, rule: MarkerRule, after: Series, median: float, at: Instant) -> list[Spell]:

@@ -110,6 +110,17 @@ def test_seen_and_settled_with_who_and_why():
     assert flag.flag_id not in [f.flag_id for f in open_flags(computed(made, "02:21"))]
 
 
+def test_what_was_said_of_a_flag_can_be_taken_back():
+    made = appended(entries(SEVERE), "02:10")
+    flag = one(computed(made, "02:10"), "ph_below_severe")
+    for i, (word, state) in enumerate(
+        (("seen", "seen"), ("settled", "settled"), ("reopened", "seen"), ("not seen", "raised"))
+    ):
+        now = at(f"02:{20 + i}")
+        made.append(recorded(word_on(flag, word, "CD", now, "E", "a reason"), len(made) + 1, word, now))
+        assert one(computed(made, now), "ph_below_severe").state == state
+
+
 def test_a_new_flag_never_stands_under_a_settled_one():
     made = appended(entries(SEVERE), "02:10")
     for flag in computed(made, "02:10"):

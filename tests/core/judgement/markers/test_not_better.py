@@ -124,6 +124,15 @@ def test_no_gain_after_hours_of_support_that_is_not_too_little(log, expected):
     assert met("no_gain_after_hours", BASE + log) == expected
 
 
+def test_no_gain_is_a_remark_in_obesity_hypoventilation():
+    """Half of its successes stay acidotic for the first 6 h (PLoS One 2014 e97563)."""
+    log = BASE.replace("copd", "'obesity hypoventilation'") + "05:00 ph 7.31 paco2 68"
+    (flag,) = [f for f in flags(log) if f.marker == "no_gain_after_hours"]
+    assert (flag.tier, flag.outside_population) == ("remark", True)
+    (plain,) = [f for f in flags(BASE + "05:00 ph 7.31 paco2 68") if f.marker == "no_gain_after_hours"]
+    assert (plain.tier, plain.outside_population) == ("escalate", False)
+
+
 SMALL = COPD + BEFORE + START.replace("ipap 20", "ipap 19")
 
 
