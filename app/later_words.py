@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from typing import TYPE_CHECKING
 
 from app.formats import quantity, wall
 from app.phrases import channel_name, translate
-from app.tables import Table
 from app.words import Reader
 from core.record.channels import CHANNELS, Kind
 from core.record.entries import Entry
 from core.record.hindsight import Hindsight, Later
 from core.record.instant import Instant
+
+if TYPE_CHECKING:
+    from app.tables import Table
 
 
 def later_word(what: Later) -> str:
@@ -63,6 +66,8 @@ def later_table(
     found: Mapping[str, Sequence[Hindsight]], labels: Mapping[str, str], known_at: Instant, reader: Reader
 ) -> Table:
     """Everything that came later, by episode and time."""
+    from app.tables import Table
+
     heads = (
         translate("later", "Episode"), translate("later", "Happened"), translate("later", "What"),
         translate("later", "Known then"), translate("later", "Known now"), translate("later", "Why it differs"),

@@ -5,28 +5,40 @@ from __future__ import annotations
 import argparse
 import sys
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from app.commands.context import Context
 from app.operations import handover as operations
 from app.plain_handover import handover_text
 from app.sheet.content import sheet_content
 from app.sheet.shapes import SheetContent
+from app.whole_file import write_whole
 from core.record.local_time import zoned_iso
+
+if TYPE_CHECKING:
+    from storage.store import Store
 
 _TEXT = (".txt", ".text", ".md")
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
-    """Write or print the handover of a shift."""
+    """Write or print the handover of a shift; keep it as closed; or write the form to fill in by hand."""
     suffix = args.out.suffix.lower() if args.out else ""
     if suffix not in ("", ".pdf", *_TEXT):
         print(f"luffmark: '{args.out}' must end in .pdf or .txt", file=sys.stderr)
         return 2
+    if args.blank:
+        return _blank(context, args.out, args.paper)
+    if args.start is None or args.end is None:
+        print("luffmark: handover needs --from and --to (or --blank)", file=sys.stderr)
+        return 2
     reader = context.reader()
-    with context.open(read_only=True) as store:
+    with context.open(read_only=not args.close) as store:
         request = operations.HandoverRequest(args.start, args.end, args.as_known_at)
         gathered = operations.prepare(store, context.by, context.now(), request).value
-    content = sheet_content(gathered, reader, given_by=args.given_by, taken_by=args.taken_by)
+        content = sheet_content(gathered, reader, given_by=args.given_by, taken_by=args.taken_by)
+        if args.close:
+            return _close(context, store, content, args)
     value = {
         "from": zoned_iso(args.start, reader.zone), "to": zoned_iso(args.end, reader.zone),
         "head": gathered.printed_head, "episodes": [s.episode for s in gathered.shift.episodes],
@@ -42,6 +54,40 @@ def run(context: Context, args: argparse.Namespace) -> int:
         return 0
     args.out.write_text(handover_text(content), "utf-8")
     context.answer(f"{args.out}: {len(content.episodes)} episodes. {content.head}.", value | {"file": str(args.out)})
+    return 0
+
+
+def _close(context: Context, store: Store, content: SheetContent, args: argparse.Namespace) -> int:
+    """Keep the sheet in the ledger as it was printed, and write the very same bytes where --out says."""
+    from app.off_screen import gui_application
+    from app.sheet.printing import pdf_bytes
+
+    if not args.given_by or not args.taken_by:
+        print("luffmark: a handover is closed with --given-by and --taken-by", file=sys.stderr)
+        return 2
+    with gui_application():
+        data, pages = pdf_bytes(content, args.paper)
+    name = operations.closed_name(content.ward.shift, args.given_by, args.taken_by)
+    kept = operations.close(store, context.by, context.now(), operations.ClosedHandover(name, data))
+    if args.out is not None:
+        write_whole(args.out, data)
+    context.answer(f"Closed as {kept.value}: {name}, {pages} pages. {content.head}.",
+                   {"id": kept.value, "name": name, "pages": pages, "head": store.printed_head()})  # fmt: skip
+    return 0
+
+
+def _blank(context: Context, path: Path | None, paper: str) -> int:
+    """The same sheet, empty."""
+    from app.off_screen import gui_application
+    from app.sheet.blank import blank_bytes
+
+    if path is None or path.suffix.lower() != ".pdf":
+        print("luffmark: handover --blank needs --out FILE.pdf", file=sys.stderr)
+        return 2
+    with gui_application():
+        data, pages = blank_bytes(paper)
+    write_whole(path, data)
+    context.answer(f"{path}: {pages} pages, blank.", {"file": str(path), "pages": pages, "paper": paper})
     return 0
 
 

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
+from app.operations.as_known import CameLater, LaterRequest, came_later
 from app.operations.episode import load
 from app.operations.outcome import Outcome, report
 from app.operations.policy import in_force
@@ -16,6 +17,7 @@ from core.record.instant import Instant
 from core.record.message import refuse
 
 if TYPE_CHECKING:
+    from storage.documents import DocumentFacts
     from storage.store import Store
 
 KIND = "handover"
@@ -47,6 +49,8 @@ class Handover:
     prepared_at: Instant
     as_known_at: Instant | None = None
     imported: bool = False
+    later: CameLater = field(default_factory=dict)
+    """What came later than `as_known_at`, by episode; empty for what is known now."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -77,7 +81,10 @@ def prepare(store: Store, who: str, now: Instant, request: HandoverRequest) -> O
             shifts.append(episode_shift(record, request.start, request.end, policy))
     shifts.sort(key=lambda s: (s.now.concern.rank, s.now.concern.order, s.now.label))
     ward = WardShift(request.start, request.end, tuple(shifts))
-    made = Handover(ward, records, policy, store.printed_head(), now, request.as_known_at, store.imported)
+    later: CameLater = {}
+    if request.as_known_at is not None:
+        later = came_later(store, who, now, LaterRequest(request.as_known_at)).value
+    made = Handover(ward, records, policy, store.printed_head(), now, request.as_known_at, store.imported, later)
     return Outcome(made, store.head())
 
 
@@ -85,6 +92,21 @@ def close(store: Store, who: str, now: Instant, request: ClosedHandover) -> Outc
     """Keep a handover in the ledger as it was printed; its document's id. It is never altered after."""
     document = store.put_document(KIND, request.name, request.pdf, who, now)
     return Outcome(document, store.head())
+
+
+def closed_name(shift: str, given_by: str, taken_by: str) -> str:
+    """What a closed handover is called in the list.
+
+    >>> closed_name("Shift 27-Mar-2026 19:30 to 07:30", "AB", "CD")
+    'Shift 27-Mar-2026 19:30 to 07:30, AB to CD'
+    """
+    return f"{shift}, {given_by} to {taken_by}"
+
+
+def closed_list(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[DocumentFacts, ...]]:
+    """Every closed handover, the newest first."""
+    found = tuple(d for d in reversed(store.documents()) if d.kind == KIND)
+    return Outcome(found, store.head())
 
 
 def closed(store: Store, who: str, now: Instant, request: str) -> Outcome[bytes]:

@@ -23,6 +23,8 @@ from core.record.instant import HOUR
 
 _STATES = {"severe": "Severe acidosis", "acidotic": "Acidotic", "resolved": "Not acidotic"}
 """A gas that is not acidotic may still be a bad one: in a heading "resolved" would say too much."""
+MOST_LATER = 8
+"""Values that came later are listed up to so many for each episode."""
 _STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
 
 
@@ -37,7 +39,7 @@ def sheet_content(
     if handover.as_known_at is not None:
         printed += f"; as known at {formats.wall(handover.as_known_at, reader.zone)}"
     return SheetContent(
-        writer.ward(title or "Handover"),
+        writer.ward(title or ("Handover" if handover.as_known_at is None else "Handover, reviewed")),
         tuple(writer.episode(n, s) for n, s in enumerate(handover.shift.episodes, 1)),
         f"Ledger head {handover.printed_head}", printed, given_by, taken_by, gas_unit=reader.gas_unit,
     )  # fmt: skip
@@ -56,6 +58,8 @@ class _Writer:
     def ward(self, title: str) -> WardPage:
         shift = self._h.shift
         span = formats.span(shift.start, shift.end, self._reader.zone)
+        if self._h.as_known_at is not None:  # on every page: a review must never be taken for the handover
+            span += f", as known at {formats.wall(self._h.as_known_at, self._reader.zone)}"
         return WardPage(
             title, f"Shift {span}", self._see_first(),
             tuple(self._ward_row(n, s) for n, s in enumerate(shift.episodes, 1)),
@@ -273,8 +277,21 @@ class _Writer:
     def _to_check(self, s: ShiftFigures) -> Iterator[str]:
         if s.recorded_late and not self._h.imported:
             yield f"{s.recorded_late} entries of this shift were recorded more than 1 h late."
+        yield from self._came_later(s)
         warnings = [*s.now.warnings, *(w for g in s.gases for w in g.warnings)]
         yield from dict.fromkeys(sentence(w, self._reader) for w in warnings)
+
+    def _came_later(self, s: ShiftFigures) -> Iterator[str]:
+        """In a review as known at a moment: what was recorded or changed only after it."""
+        told = self._h.later.get(s.episode, ())
+        if not told:
+            return
+        from app.later_words import later_sentence
+
+        for h in told[:MOST_LATER]:
+            yield f"Not known then: {later_sentence(h, self._reader)}."
+        if len(told) > MOST_LATER:
+            yield f"Not known then: {len(told) - MOST_LATER} more values."
 
     def _clock(self, at: int) -> str:
         return formats.clock(at, self._reader.zone)
