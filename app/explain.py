@@ -22,6 +22,7 @@ from core.judgement.shapes import (
     DueFigure,
     FlagFigure,
     GasFigure,
+    JudgedGas,
     LeverFigure,
     ResponseFigure,
     ScoreFigure,
@@ -73,99 +74,82 @@ class Explainer:
 
     def flag(self, flag: FlagFigure) -> Explanation:
         """A flag: its evidence, the marker's limits, since when, who has seen it."""
-        zone = self.reader.zone
-        rule = self.policy.markers.get(flag.marker)
-        rules = []
-        if rule is not None and rule.limits:
-            told = ", ".join(
-                f"{quantity_name(name)} {_limit_value(name, value)}" for name, value in rule.limits.items()
-            )
-            rules.append(
-                translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told)
-            )
-        if rule is not None:
-            rules.append(
-                translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " "))
-            )
-        notes = [
-            translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
-            translate("explain", "Met since {time}.").format(time=wall(flag.since, zone)),
-        ]
-        if flag.outside_population:
-            notes.append(translate("explain", "This patient is outside the population it was validated in."))
-        if flag.seen_by and flag.seen_at is not None:
-            notes.append(
-                translate("explain", "Seen by {who}, {time}.").format(
-                    who=flag.seen_by, time=wall(flag.seen_at, zone)
-                )
-            )
-        if flag.settled_by and flag.settled_at is not None:
-            notes.append(
-                translate("explain", "Settled by {who}, {time}: {why}").format(
-                    who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or ""
-                )
-            )
         evidence = tuple(sentence(e, self.reader) for e in flag.evidence)
-        notes.append(translate("explain", "Policy {hash}.").format(hash=flag.policy[:16]))
-        return Explanation(
-            marker_name(flag.marker, self.reader),
-            (*evidence, *rules),
-            (),
-            tuple(notes),
-            flag.source,
-            flag.sure,
+        notes = (
+            translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
+            translate("explain", "Met since {time}.").format(time=wall(flag.since, self.reader.zone)),
+            *self._words_on(flag),
+            translate("explain", "Policy {hash}.").format(hash=flag.policy[:16]),
         )
+        name = marker_name(flag.marker, self.reader)
+        return Explanation(name, (*evidence, *self._marker(flag)), (), notes, flag.source, flag.sure)
+
+    def _marker(self, flag: FlagFigure) -> Iterator[str]:
+        """The marker's own numbers, and whom it applies to."""
+        rule = self.policy.markers.get(flag.marker)
+        if rule is None:
+            return
+        if rule.limits:
+            told = ", ".join(f"{quantity_name(k)} {_limit_value(k, v)}" for k, v in rule.limits.items())
+            yield translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told)
+        yield translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " "))
+
+    def _words_on(self, flag: FlagFigure) -> Iterator[str]:
+        """What was said of the flag, and what weakens it."""
+        zone = self.reader.zone
+        if flag.outside_population:
+            yield translate("explain", "This patient is outside the population it was validated in.")
+        if flag.seen_by and flag.seen_at is not None:
+            text = translate("explain", "Seen by {who}, {time}.")
+            yield text.format(who=flag.seen_by, time=wall(flag.seen_at, zone))
+        if flag.settled_by and flag.settled_at is not None:
+            text = translate("explain", "Settled by {who}, {time}: {why}")
+            yield text.format(
+                who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or ""
+            )
 
     def response(self, response: ResponseFigure) -> Explanation:
         """A verdict: the baseline, the gas, what was compared against which noise."""
         zone, noise = self.reader.zone, self.policy.noise
         inputs = []
         if response.baseline_at is not None:
-            inputs.append(
-                (
-                    translate("explain", "Baseline gas"),
-                    self._values(response.baseline_ph, response.baseline_paco2_mmHg),
-                    clock(response.baseline_at, zone),
-                )
-            )
+            values = self._values(response.baseline_ph, response.baseline_paco2_mmHg)
+            inputs.append((translate("explain", "Baseline gas"), values, clock(response.baseline_at, zone)))
         for g in response.gases:
-            told = [f"{minutes(g.minutes)}"]
-            if g.delta_ph is not None:
-                told.append(f"pH {signed(g.delta_ph, 2)}")
-            if g.delta_paco2_mmHg is not None:
-                told.append(f"PaCO2 {gas_pressure(g.delta_paco2_mmHg, self.reader.gas_unit, sign=True)}")
-            if g.verdict is not None:
-                told.append(verdict_word(verdict_of(g.verdict)))
-            inputs.append((translate("explain", "Gas judged"), ", ".join(told), clock(g.at, zone)))
-        why = [sentence(m, self.reader) for g in response.gases for m in g.why] + [
-            sentence(m, self.reader) for m in response.why
-        ]
-        rules = (
-            translate(
-                "explain",
-                "A gas 30 to 120 minutes after the change judges it against the last gas before it.",
-            ),
-            translate("explain", "Beyond noise is: {limits}.").format(
-                limits="; ".join(
-                    (
-                        self._limit("pH", noise.ph, fixed(noise.ph.value, 3)),
-                        self._limit(
-                            "PaCO2",
-                            noise.paco2_mmHg,
-                            gas_pressure(noise.paco2_mmHg.value, self.reader.gas_unit),
-                        ),
-                        self._limit("PaCO2", noise.paco2_fraction, fraction(noise.paco2_fraction.value)),
-                        self._limit("P/F", noise.pao2_fraction, fraction(noise.pao2_fraction.value)),
-                    )
-                )
-            ),
+            inputs.append((translate("explain", "Gas judged"), self._judged(g), clock(g.at, zone)))
+        messages = (*(m for g in response.gases for m in g.why), *response.why)
+        why = tuple(dict.fromkeys(sentence(m, self.reader) for m in messages))
+        verdict = verdict_word(verdict_of(response.headline))
+        title = translate("explain", "Verdict: {verdict}").format(verdict=verdict)
+        return Explanation(title, self._response_rules(), tuple(inputs), why, noise.ph.source, noise.ph.sure)
+
+    def _judged(self, gas: JudgedGas) -> str:
+        told = [minutes(gas.minutes)]
+        if gas.delta_ph is not None:
+            told.append(f"pH {signed(gas.delta_ph, 2)}")
+        if gas.delta_paco2_mmHg is not None:
+            told.append(f"PaCO2 {gas_pressure(gas.delta_paco2_mmHg, self.reader.gas_unit, sign=True)}")
+        if gas.verdict is not None:
+            told.append(verdict_word(verdict_of(gas.verdict)))
+        return ", ".join(told)
+
+    def _response_rules(self) -> tuple[str, str]:
+        """How a verdict is come by, with the policy's own numbers."""
+        window, noise = self.policy.response, self.policy.noise
+        rule = translate(
+            "explain",
+            "A gas {start} to {end} minutes after the change judges it against the last gas before it.",
         )
-        title = translate("explain", "Verdict: {verdict}").format(
-            verdict=verdict_word(verdict_of(response.headline))
+        paco2 = gas_pressure(noise.paco2_mmHg.value, self.reader.gas_unit)
+        limits = (
+            self._limit("pH", noise.ph, fixed(noise.ph.value, 3)),
+            self._limit("PaCO2", noise.paco2_mmHg, paco2),
+            self._limit("PaCO2", noise.paco2_fraction, fraction(noise.paco2_fraction.value)),
+            self._limit("P/F", noise.pao2_fraction, fraction(noise.pao2_fraction.value)),
         )
-        return Explanation(
-            title, rules, tuple(inputs), tuple(dict.fromkeys(why)), noise.ph.source, noise.ph.sure
-        )
+        told = translate("explain", "Beyond noise is: {limits}.").format(limits="; ".join(limits))
+        span = {"start": trimmed(window.window_from_min.value), "end": trimmed(window.window_to_min.value)}
+        return rule.format(**span), told
 
     def gas(self, gas: GasFigure) -> Explanation:
         """A gas: what was reported, what was computed from it and how, why something is absent."""

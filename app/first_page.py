@@ -6,10 +6,23 @@ from collections.abc import Sequence
 from pathlib import Path
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QCheckBox, QFrame, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QCheckBox,
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QPushButton,
+    QScrollArea,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.cautions import cautions, intended_use
+from app.flow_row import FlowRow
 from app.theme import Theme
+
+MOST_WIDTH = 960
+MOST_RECENT = 4
 
 
 class FirstPage(QWidget):
@@ -24,33 +37,46 @@ class FirstPage(QWidget):
 
     def __init__(self, theme: Theme, recent: Sequence[str], cautions_seen: bool) -> None:
         super().__init__()
+        self._theme = theme
         px = theme.px
         middle = QFrame()
         middle.setProperty("card", True)
-        middle.setFixedWidth(px(760))
-        column = QVBoxLayout(middle)
-        column.setContentsMargins(px(32), px(28), px(32), px(28))
-        column.setSpacing(px(12))
-        title = QLabel("Luffmark")
-        title.setProperty("role", "display")
-        column.addWidget(title)
-        column.addWidget(_text(intended_use()))
-        column.addSpacing(px(4))
-        for caution in cautions():
-            column.addWidget(_bullet(caution, px(10)))
+        middle.setFixedWidth(min(px(760), MOST_WIDTH))
+        self._column = QVBoxLayout(middle)
+        self._column.setContentsMargins(px(32), px(28), px(32), px(28))
+        self._column.setSpacing(px(12))
         self.read = QCheckBox(self.tr("I have read this"))
-        self.read.setChecked(cautions_seen)
-        self.read.setVisible(not cautions_seen)
-        self.read.toggled.connect(self._read)
-        column.addWidget(self.read, 0, Qt.AlignmentFlag.AlignLeft)
-        column.addSpacing(px(8))
-        row = QHBoxLayout()
-        row.setSpacing(px(12))
         self.sample = QPushButton(self.tr("Open the sample shift"))
-        self.sample.setProperty("role", "primary")
         self.new = QPushButton(self.tr("New store..."))
         self.open = QPushButton(self.tr("Open store..."))
         self.file = QPushButton(self.tr("Take in a file..."))
+        self.recent: list[QPushButton] = []
+        self._add_cautions(cautions_seen)
+        self._add_ways()
+        self._add_recent(recent)
+        self._centre(middle)
+        self._allow(cautions_seen)
+
+    def _add_cautions(self, seen: bool) -> None:
+        px = self._theme.px
+        title = QLabel("Luffmark")
+        title.setProperty("role", "display")
+        self._column.addWidget(title)
+        self._column.addWidget(_text(intended_use()))
+        self._column.addSpacing(px(4))
+        for caution in cautions():
+            self._column.addWidget(_bullet(caution, px(10)))
+        self.read.setChecked(seen)
+        self.read.setVisible(not seen)
+        self.read.toggled.connect(self._read)
+        self._column.addWidget(self.read, 0, Qt.AlignmentFlag.AlignLeft)
+        self._column.addSpacing(px(8))
+
+    def _add_ways(self) -> None:
+        self.sample.setProperty("role", "primary")
+        ways = QWidget()
+        row = FlowRow(ways, self._theme.px(12))
+        row.setContentsMargins(0, 0, 0, 0)
         for button, signal in (
             (self.sample, self.sample_wanted),
             (self.new, self.new_wanted),
@@ -59,29 +85,36 @@ class FirstPage(QWidget):
         ):
             button.clicked.connect(signal)
             row.addWidget(button)
-        row.addStretch(1)
-        column.addLayout(row)
+        self._column.addWidget(ways)
         note = QLabel(self.tr("The sample shift is invented. It opens in a throw-away store."))
         note.setProperty("role", "caption")
-        column.addWidget(note)
-        self.recent: list[QPushButton] = []
-        for path in recent[:4]:
+        self._column.addWidget(note)
+
+    def _add_recent(self, recent: Sequence[str]) -> None:
+        for path in recent[:MOST_RECENT]:
             button = QPushButton(f"{Path(path).name}    {Path(path).parent}")
             button.setProperty("role", "plain")
             button.setProperty("path", path)
             button.setAccessibleName(self.tr("Open {path}").format(path=path))
             button.clicked.connect(self._recent)
             self.recent.append(button)
-            column.addWidget(button, 0, Qt.AlignmentFlag.AlignLeft)
-        sides = QHBoxLayout()
+            self._column.addWidget(button, 0, Qt.AlignmentFlag.AlignLeft)
+
+    def _centre(self, middle: QFrame) -> None:
+        """In the middle of the page; with large text the page scrolls."""
+        inside = QWidget()
+        sides = QHBoxLayout(inside)
         sides.addStretch(1)
-        sides.addWidget(middle)
+        sides.addWidget(middle, 0, Qt.AlignmentFlag.AlignVCenter)
         sides.addStretch(1)
+        roll = QScrollArea()
+        roll.setWidgetResizable(True)
+        roll.setFrameShape(QFrame.Shape.NoFrame)
+        roll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        roll.setWidget(inside)
         outer = QVBoxLayout(self)
-        outer.addStretch(1)
-        outer.addLayout(sides)
-        outer.addStretch(2)
-        self._allow(cautions_seen)
+        outer.setContentsMargins(0, 0, 0, 0)
+        outer.addWidget(roll)
 
     def _read(self, checked: bool) -> None:
         self._allow(checked)

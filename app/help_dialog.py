@@ -16,7 +16,8 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.actions import DEEDS, help_of, keys_of, name_of
+from app.action_table import DEEDS
+from app.actions import help_of, keys_of, name_of
 from app.signs import Sign
 from app.theme import GasState, Theme, Tier, Verdict, state_word, tier_word, verdict_word
 

@@ -9,14 +9,13 @@ from __future__ import annotations
 from enum import StrEnum
 from html import escape
 
-from PySide6.QtCore import QEvent, Qt, Signal
-from PySide6.QtGui import QKeyEvent, QKeySequence, QResizeEvent
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import (
     QBoxLayout,
     QFrame,
     QHBoxLayout,
     QLabel,
-    QLineEdit,
     QPushButton,
     QSizePolicy,
     QVBoxLayout,
@@ -30,6 +29,7 @@ from app.phrases import channel_name
 from app.readers import reader_at
 from app.session import SessionModel
 from app.strip.completion import completed, completions
+from app.strip.line_field import LineField
 from app.strip.preview_words import PreviewWords, preview_words
 from app.theme import Theme
 from app.words import Reader, sentence
@@ -47,38 +47,6 @@ class State(StrEnum):
     ASKING = "asking"
     REFUSED = "refused"
     TOLD = "told"
-
-
-class LineField(QLineEdit):
-    """The line itself. Tab completes, Esc leaves, Ctrl+Z on an empty line is the window's undo."""
-
-    left = Signal()
-    completion_wanted = Signal()
-
-    def event(self, event: QEvent) -> bool:
-        if (
-            event.type() == QEvent.Type.ShortcutOverride
-            and isinstance(event, QKeyEvent)
-            and not self.text()
-            and event.matches(QKeySequence.StandardKey.Undo)
-        ):
-            event.ignore()
-            return False
-        is_tab = (
-            event.type() == QEvent.Type.KeyPress
-            and isinstance(event, QKeyEvent)
-            and event.key() == Qt.Key.Key_Tab
-        )
-        if is_tab and completions(self.text(), self.cursorPosition()):
-            self.completion_wanted.emit()
-            return True
-        return super().event(event)
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.left.emit()
-            return
-        super().keyPressEvent(event)
 
 
 class LogStrip(QFrame):

@@ -116,10 +116,10 @@ class WardView(QWidget):
         self.tools = QWidget()
         tools = FlowRow(self.tools, px(12))
         tools.setContentsMargins(0, 0, 0, 0)
-        for widget in (self.sort, self.filter):
-            tools.addWidget(widget)
-        for widget in (self.shift, self.search):
-            tools.add_right(widget)
+        tools.addWidget(self.sort)
+        tools.addWidget(self.filter)
+        tools.add_right(self.shift)
+        tools.add_right(self.search)
         self.search.setFixedWidth(px(166))
         self._foot = QHBoxLayout()
         self._foot.setSpacing(px(16))

@@ -2,15 +2,16 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from pathlib import Path
 
 from PySide6.QtCore import Signal
 from PySide6.QtGui import QCloseEvent, QResizeEvent
-from PySide6.QtWidgets import QApplication, QLayoutItem, QMainWindow, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QApplication, QMainWindow, QVBoxLayout, QWidget
 
 from app import preferences as kept
-from app.actions import DEEDS, fill_menus, make_actions
+from app.action_table import DEEDS
+from app.actions import fill_menus, make_actions
 from app.deeds import Doers
 from app.episode_feed import EpisodeFeed
 from app.episode_shown import EpisodeOnScreen
@@ -18,6 +19,7 @@ from app.failure import Failure
 from app.first_page import FirstPage
 from app.known_strip import KnownStrip
 from app.log_strip import LogStrip
+from app.opened import Opened, let_go
 from app.pages import Pages
 from app.preferences import Preferences
 from app.progress_line import ProgressLine
@@ -33,17 +35,6 @@ from app.words import Reader, sentence
 LEAST_SIZE = (1000, 640)
 USUAL_SIZE = (1280, 800)
 ASK_PASSPHRASE = ("store.needs_passphrase", "key.wrong_passphrase")
-
-
-@dataclass(frozen=True, slots=True)
-class Opened:
-    """What there is while a store is open."""
-
-    model: SessionModel
-    feed: WardFeed
-    episode_feed: EpisodeFeed
-    pages: Pages
-    strip: LogStrip
 
 
 class MainWindow(QMainWindow):
@@ -410,19 +401,5 @@ class MainWindow(QMainWindow):
 
     def _clear_column(self) -> None:
         while self._column.count():
-            _let_go(self._column.takeAt(0))
+            let_go(self._column.takeAt(0))
         self.top.hide()
-
-
-def _let_go(item: QLayoutItem | None) -> None:
-    if item is None:
-        return
-    widget, layout = item.widget(), item.layout()
-    if isinstance(widget, TopBar | ProgressLine | KnownStrip):
-        widget.hide()
-    elif widget is not None:
-        widget.hide()
-        widget.deleteLater()
-    elif layout is not None:
-        while layout.count():
-            _let_go(layout.takeAt(0))

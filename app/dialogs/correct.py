@@ -64,6 +64,15 @@ class CorrectDialog(AskingDialog):
         self._model, self._record, self._reader = model, record, reader
         self._confirmed = False
         self.list = QTreeWidget()
+        self.act, self.to = Chooser(), Chooser()
+        self.value, self.time, self.reason = QLineEdit(), QLineEdit(), QLineEdit()
+        self._add_list()
+        self._add_fields({key: label for key, label in labels.items() if key != record.key})
+        self._fill()
+        self._act_chosen()
+        self.resize(theme.px(860), theme.px(640))
+
+    def _add_list(self) -> None:
         self.list.setAccessibleName(self.tr("Logged values, newest first"))
         self.list.setHeaderLabels(
             [self.tr("When"), self.tr("What"), self.tr("Value"), self.tr("By"), self.tr("Marks")]
@@ -74,33 +83,21 @@ class CorrectDialog(AskingDialog):
         self.list.header().setStretchLastSection(False)
         self.list.header().setSectionResizeMode(2, QHeaderView.ResizeMode.Stretch)
         self.list.setTextElideMode(Qt.TextElideMode.ElideRight)
+        self.list.currentItemChanged.connect(self._chosen)
         self.add_body(self.list)
-        self.act, self.value, self.time, self.to, self.reason = (
-            Chooser(),
-            QLineEdit(),
-            QLineEdit(),
-            Chooser(),
-            QLineEdit(),
-        )
-        for act, word in (
-            (Act.CORRECT, self.tr("correct the value or the time")),
-            (Act.WITHDRAW, self.tr("withdraw: it must not count")),
-            (Act.MOVE, self.tr("move to another patient")),
-        ):
-            self.act.addItem(word, act)
-        for key, label in labels.items():
-            if key != record.key:
-                self.to.addItem(label, key)
+
+    def _add_fields(self, others: Mapping[str, str]) -> None:
+        self.act.addItem(self.tr("correct the value or the time"), Act.CORRECT)
+        self.act.addItem(self.tr("withdraw: it must not count"), Act.WITHDRAW)
+        self.act.addItem(self.tr("move to another patient"), Act.MOVE)
+        for key, label in others.items():
+            self.to.addItem(label, key)
         self.field(self.tr("What to do"), self.act)
         self.field(self.tr("Right value, with unit"), self.value)
         self.field(self.tr("Right time, HH:MM"), self.time)
         self.field(self.tr("Right patient"), self.to)
         self.field(self.tr("Reason"), self.reason)
-        self.list.currentItemChanged.connect(self._chosen)
         self.act.currentIndexChanged.connect(self._act_chosen)
-        self._fill()
-        self._act_chosen()
-        self.resize(theme.px(860), theme.px(640))
 
     def _fill(self) -> None:
         for s in sorted(self._record.standing, key=lambda s: (-s.entry.at, -s.entry.seq)):

@@ -60,11 +60,23 @@ class PanelEditor(QDialog):
     def _lay_out(self) -> None:
         px = self._theme.px
         self.list.setAccessibleName(self.tr("Panels, top to bottom"))
-        self.channels.setAccessibleName(self.tr("Channels in this panel"))
         for box in (self.list, self.channels):
             box.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        left = QVBoxLayout()
+        left.addWidget(self.list, 1)
+        left.addLayout(self._tools())
+        upper = QHBoxLayout()
+        upper.addLayout(left, 2)
+        upper.addLayout(self._fields(), 3)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(px(16), px(16), px(16), px(16))
+        column.addLayout(upper, 1)
+        column.addWidget(self.wrong)
+        column.addLayout(self._foot())
+
+    def _fields(self) -> QGridLayout:
         grid = QGridLayout()
-        grid.setSpacing(px(8))
+        grid.setSpacing(self._theme.px(8))
         fields = (
             (self.tr("Name"), self.name),
             (self.tr("Channels, of one or two units"), self.channels),
@@ -79,6 +91,9 @@ class PanelEditor(QDialog):
         grid.addWidget(self.bands, len(fields), 1)
         for field in (self.low, self.high):
             field.setPlaceholderText(self.tr("follows the values"))
+        return grid
+
+    def _tools(self) -> QGridLayout:
         buttons: tuple[tuple[str, Callable[[], None]], ...] = (
             (self.tr("Add"), self.add),
             (self.tr("Duplicate"), self.duplicate),
@@ -90,12 +105,9 @@ class PanelEditor(QDialog):
         tools = QGridLayout()
         for n, (word, slot) in enumerate(buttons):
             tools.addWidget(self._button(word, slot), n // 3, n % 3)
-        left = QVBoxLayout()
-        left.addWidget(self.list, 1)
-        left.addLayout(tools)
-        upper = QHBoxLayout()
-        upper.addLayout(left, 2)
-        upper.addLayout(grid, 3)
+        return tools
+
+    def _foot(self) -> QHBoxLayout:
         foot = QHBoxLayout()
         for word, slot in (
             (self.tr("Reset to shipped"), self.reset),
@@ -108,11 +120,7 @@ class PanelEditor(QDialog):
         self.keep_button.setProperty("role", "primary")
         foot.addWidget(self._button(self.tr("Leave"), self.reject))
         foot.addWidget(self.keep_button)
-        column = QVBoxLayout(self)
-        column.setContentsMargins(px(16), px(16), px(16), px(16))
-        column.addLayout(upper, 1)
-        column.addWidget(self.wrong)
-        column.addLayout(foot)
+        return foot
 
     def _button(self, word: str, slot: Callable[[], None]) -> QPushButton:
         button = QPushButton(word)

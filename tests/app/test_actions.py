@@ -5,7 +5,8 @@ from collections import Counter
 import pytest
 from PySide6.QtGui import QKeySequence
 
-from app.actions import DEEDS, MENUS, found, help_of, keys_of, name_of
+from app.action_table import DEEDS, MENUS
+from app.actions import found, help_of, keys_of, name_of
 from app.deeds.episode import EpisodeDeeds
 from app.deeds.file import FileDeeds
 from app.deeds.help import HelpDeeds

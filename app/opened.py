@@ -1,0 +1,46 @@
+"""What the window holds while a store is open, and how it lets go of what it showed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from PySide6.QtWidgets import QLayoutItem
+
+from app.episode_feed import EpisodeFeed
+from app.known_strip import KnownStrip
+from app.log_strip import LogStrip
+from app.pages import Pages
+from app.progress_line import ProgressLine
+from app.session import SessionModel
+from app.top_bar import TopBar
+from app.ward_feed import WardFeed
+
+
+@dataclass(frozen=True, slots=True)
+class Opened:
+    """What there is while a store is open."""
+
+    model: SessionModel
+    feed: WardFeed
+    episode_feed: EpisodeFeed
+    pages: Pages
+    strip: LogStrip
+
+
+LASTING = (TopBar, ProgressLine, KnownStrip)
+"""Parts of the window that outlive a store: they are hidden, not thrown away."""
+
+
+def let_go(item: QLayoutItem | None) -> None:
+    """Take what a layout's item holds off the screen, and throw it away unless it lasts."""
+    if item is None:
+        return
+    widget, layout = item.widget(), item.layout()
+    if isinstance(widget, LASTING):
+        widget.hide()
+    elif widget is not None:
+        widget.hide()
+        widget.deleteLater()
+    elif layout is not None:
+        while layout.count():
+            let_go(layout.takeAt(0))

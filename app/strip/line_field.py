@@ -1,0 +1,41 @@
+"""The line of the log strip: which keys it keeps for itself."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QEvent, Qt, Signal
+from PySide6.QtGui import QKeyEvent, QKeySequence
+from PySide6.QtWidgets import QLineEdit
+
+from app.strip.completion import completions
+
+
+class LineField(QLineEdit):
+    """The line itself. Tab completes, Esc leaves, Ctrl+Z on an empty line is the window's undo."""
+
+    left = Signal()
+    completion_wanted = Signal()
+
+    def event(self, event: QEvent) -> bool:
+        if (
+            event.type() == QEvent.Type.ShortcutOverride
+            and isinstance(event, QKeyEvent)
+            and not self.text()
+            and event.matches(QKeySequence.StandardKey.Undo)
+        ):
+            event.ignore()
+            return False
+        is_tab = (
+            event.type() == QEvent.Type.KeyPress
+            and isinstance(event, QKeyEvent)
+            and event.key() == Qt.Key.Key_Tab
+        )
+        if is_tab and completions(self.text(), self.cursorPosition()):
+            self.completion_wanted.emit()
+            return True
+        return super().event(event)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.left.emit()
+            return
+        super().keyPressEvent(event)
