@@ -177,9 +177,12 @@ def _bit_packed(whole: Integers, bits: int) -> bytes:
 def _from_bits(raw: bytes, bits: int, n: int) -> Integers:
     if bits == 0:
         return np.zeros(n, np.int64)
-    wide = np.zeros((n, 32), np.uint8)
-    wide[:, 32 - bits :] = np.unpackbits(np.frombuffer(raw, np.uint8), count=n * bits).reshape(n, bits)
-    return np.packbits(wide, axis=1).view(">u4").reshape(n).astype(np.int64)
+    if bits > 32:
+        raise ValueError("width")
+    size = next(w for w in (8, 16, 32) if bits <= w)
+    wide = np.zeros((n, size), np.uint8)
+    wide[:, size - bits :] = np.unpackbits(np.frombuffer(raw, np.uint8), count=n * bits).reshape(n, bits)
+    return np.packbits(wide.reshape(-1)).view(f">u{size // 8}").astype(np.int64)
 
 
 def _zigzag(value: int) -> int:
