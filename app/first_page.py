@@ -51,11 +51,19 @@ class FirstPage(QWidget):
         self.open = QPushButton(self.tr("Open store..."))
         self.file = QPushButton(self.tr("Take in a file..."))
         self.recent: list[QPushButton] = []
+        self.said = _text("")
+        self.said.setProperty("role", "strong")
+        self.said.hide()
         self._add_cautions(cautions_seen)
         self._add_ways()
         self._add_recent(recent)
         self._centre(middle)
         self._allow(cautions_seen)
+
+    def say(self, text: str) -> None:
+        """Say why nothing could be opened."""
+        self.said.setText(text)
+        self.said.show()
 
     def _add_cautions(self, seen: bool) -> None:
         px = self._theme.px
@@ -86,6 +94,7 @@ class FirstPage(QWidget):
             button.clicked.connect(signal)
             row.addWidget(button)
         self._column.addWidget(ways)
+        self._column.addWidget(self.said)
         note = QLabel(self.tr("The sample shift is invented. It opens in a throw-away store."))
         note.setProperty("role", "caption")
         self._column.addWidget(note)

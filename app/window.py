@@ -369,11 +369,18 @@ class MainWindow(QMainWindow):
             o.pages.map.show_episode(on)
 
     def show_failure(self, failure: Failure) -> None:
-        """Say in the strip what did not succeed; a store that wants its passphrase asks for it."""
+        """Say in the strip what did not succeed. A store that wants its passphrase asks for it; one that
+        cannot be opened leads back to the first page."""
+        text = sentence(failure.message, self.reader)
         if failure.message.key in ASK_PASSPHRASE:
             self.doers.file.ask_passphrase()
+        elif self.opened is not None and not self.opened.feed.is_ready and not failure.is_ours:
+            self.close_model()
+            self.show_first_page()
+            if self.first is not None:
+                self.first.say(text)
         else:
-            self.say(sentence(failure.message, self.reader))
+            self.say(text)
 
     def say(self, text: str) -> None:
         """Say something in the strip."""

@@ -1,0 +1,72 @@
+"""With text up to twice as large nothing that can be pressed is cut, and lanes keep their place."""
+
+import pytest
+from PySide6.QtWidgets import QAbstractButton, QLabel, QWidget
+
+from app.flow_row import FlowRow
+from app.preferences import Preferences
+from tests.support.open_window import make_store, open_window, settled
+
+
+@pytest.mark.parametrize("scale", [1.0, 1.3, 1.5, 2.0])
+@pytest.mark.parametrize("size", [(1280, 800), (1920, 1080)])
+def test_no_button_is_cut(qtbot, tmp_path, scale, size):
+    preferences = Preferences(text_scale=scale, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(*size)
+        for page in ("ward", "episode", "handover"):
+            window.show_page(page)
+            settled(qtbot, window)
+            qtbot.wait(20)
+            cut = [
+                b.text()
+                for b in window.findChildren(QAbstractButton)
+                if b.isVisible() and b.text() and _is_cut(b)
+            ]
+            assert cut == []
+        assert window.top.isVisible()
+        assert window.top.moment.width() >= window.top.moment.sizeHint().width()
+
+
+def _is_cut(button):
+    return button.width() < button.sizeHint().width() or not button.window().rect().contains(
+        button.mapTo(button.window(), button.rect().bottomRight())
+    )
+
+
+def labels(widths, spacing=10):
+    parent = QWidget()
+    row = FlowRow(parent, spacing)
+    row.setContentsMargins(0, 0, 0, 0)
+    made = []
+    for n, width in enumerate(widths):
+        label = QLabel(str(n))
+        label.setFixedSize(width, 20)
+        made.append(label)
+    return parent, row, made
+
+
+def test_what_does_not_fit_goes_on_in_the_next_line(qtbot):
+    parent, row, made = labels([100, 100, 100])
+    qtbot.addWidget(parent)
+    for label in made:
+        row.addWidget(label)
+    parent.resize(230, row.heightForWidth(230))
+    parent.show()
+    assert row.heightForWidth(400) == 20
+    assert row.heightForWidth(230) == 50
+    assert [(x.x(), x.y()) for x in made] == [(0, 0), (110, 0), (0, 30)]
+
+
+def test_what_stands_at_the_right_end_does(qtbot):
+    parent, row, made = labels([100, 50, 60])
+    qtbot.addWidget(parent)
+    row.addWidget(made[0])
+    row.add_right(made[1])
+    row.add_right(made[2])
+    parent.resize(400, 20)
+    parent.show()
+    assert [x.x() for x in made] == [0, 280, 340]
+    made[1].hide()
+    parent.resize(401, 20)
+    qtbot.waitUntil(lambda: made[2].x() == 341)
