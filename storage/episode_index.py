@@ -2,15 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-
 import sqlalchemy as sa
 
 from core.record.entries import Action
 from core.record.knowledge import standing
 from storage import schema as s
 from storage.draft_batch import DraftBatch, Receipt
-from storage.reading_ledger import episode_entries
+from storage.reading_ledger import channel_entries, episode_entries
 
 _now = s.episode_now.c
 ENDS = "ended_at"
@@ -91,8 +89,9 @@ def rebuilt(connection: sa.Connection) -> list[dict[str, object]]:
             row = found.setdefault(episode, {"episode_id": episode, "first_seq": first, "last_seq": last,
                                              "last_at": last_at, "ended_at": None})  # fmt: skip
             row.update(_widest(row, first, last, last_at))
-    for episode in _with_ends(connection):
-        found[episode]["ended_at"] = ended_at(connection, episode, 2**62)
+    for x in standing(channel_entries(connection, ENDS)):  # a chain of replacements keeps its channel
+        number = x.entry.number
+        found[x.entry.episode]["ended_at"] = None if number is None else int(number)
     return [found[key] for key in sorted(found)]
 
 
@@ -102,11 +101,6 @@ def _widest(row: dict[str, object], first: int, last: int, last_at: int) -> dict
         "last_seq": max(int(str(row["last_seq"])), last),
         "last_at": max(int(str(row["last_at"])), last_at),
     }
-
-
-def _with_ends(connection: sa.Connection) -> Iterable[str]:
-    query = sa.select(s.entry.c.episode_id).where(s.entry.c.channel == ENDS).distinct()
-    return [row[0] for row in connection.execute(query)]
 
 
 def kept(connection: sa.Connection) -> list[dict[str, object]]:
