@@ -13,6 +13,7 @@ from PySide6.QtWidgets import QDialog, QFileDialog, QInputDialog, QLineEdit
 from app.clock import REAL, running_from
 from app.deeds.doer import Doer
 from app.local_zone import local_zone
+from app.operations.intake import ReadRequest
 from app.runner import Opener, Runner
 from app.session import Session, SessionModel
 from storage.store import Store
@@ -125,16 +126,35 @@ class FileDeeds(Doer):
             self.window,
             self.tr("Take in a file"),
             str(Path.home()),
-            self.tr("Log files (*.csv);;All files (*)"),
+            self.tr("Files of values (*.csv *.tsv *.txt *.xlsx *.ods *.hl7 *.json *.ndjson);;All files (*)"),
         )
         if chosen:
             self.take_in(Path(chosen))
 
     def take_in(self, path: Path) -> QDialog:
-        """Show what a file holds; the dialog takes it in."""
+        """Show what a file holds; the dialog takes it in. A table is mapped first."""
+        from storage.intake.file_kinds import FileKind, kind_of
+
+        try:
+            kind = kind_of(path)
+        except OSError:
+            kind = FileKind.LOG_CSV  # the dialog says what is wrong with it
+        if kind is not FileKind.TABLE:
+            return self._show_intake(ReadRequest(path, zone=self.model.session.zone, episodes=self._episodes()))
+        from app.intake_window.mapping_dialog import MappingDialog
+
+        asking = MappingDialog(self.model, path, self.window.reader, self.window.theme, self.window)
+        asking.ready.connect(self._show_intake)
+        asking.open()
+        return asking
+
+    def _episodes(self) -> tuple[str, ...]:
+        return tuple(self.window.feed.answers) if self.window.feed is not None else ()
+
+    def _show_intake(self, request: ReadRequest) -> QDialog:
         from app.dialogs.intake import IntakeDialog
 
-        dialog = IntakeDialog(self.model, path, self.window.reader, self.window.theme, self.window)
+        dialog = IntakeDialog(self.model, request, self.window.reader, self.window.theme, self.window)
         dialog.open()
         return dialog
 
@@ -147,12 +167,8 @@ class FileDeeds(Doer):
             self.window.doers.ward.save_handover(Path(chosen))
 
     def do_save_picture(self) -> None:
-        """Ask where, save what the window shows."""
-        chosen, _ = QFileDialog.getSaveFileName(
-            self.window, self.tr("Save picture"), str(Path.home() / "luffmark.png"), self.tr("PNG (*.png)")
-        )
-        if chosen and not self.window.grab().save(chosen):
-            self.window.say(self.tr("{path} could not be written.").format(path=chosen))
+        """Ask where, draw what the page shows as PNG, SVG or PDF."""
+        self.window.doers.review.save_picture()
 
     # person
 

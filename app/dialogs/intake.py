@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from PySide6.QtCore import QElapsedTimer, QTimer
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QCheckBox,
@@ -18,8 +20,9 @@ from PySide6.QtWidgets import (
 
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
+from app.intake_window.patient_rows import PatientRows
 from app.operations import intake as intake_operations
-from app.operations.intake import TakeRequest
+from app.operations.intake import ReadRequest, TakeRequest
 from app.operations.outcome import Outcome
 from app.runner import Progress
 from app.session import SessionModel
@@ -27,19 +30,24 @@ from app.theme import Theme
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:
-    from storage.intake.findings import Intake
+    from storage.intake.findings import Doubt, Intake, Refusal
 
 MOST_ROWS = 500
 """Rows of the table; a file with more faults is not repaired by reading on."""
+MOST_LETTERS = 40
+"""Letters of a value: the sentence beside it needs the room."""
 
 
 class IntakeDialog(AskingDialog):
     """Reads, shows, and takes in when told to. Leaving stops a reading that still runs."""
 
     def __init__(
-        self, model: SessionModel, path: Path, reader: Reader, theme: Theme, parent: QWidget | None = None
-    ) -> None:
+        self, model: SessionModel, file: Path | ReadRequest, reader: Reader, theme: Theme,
+        parent: QWidget | None = None,
+    ) -> None:  # fmt: skip
         super().__init__("", "", theme, parent)
+        self._request = ReadRequest(file) if isinstance(file, Path) else file
+        path = self._request.path
         self.setWindowTitle(self.tr("Take in {name}").format(name=path.name))
         self.go.setText(self.tr("Take it in"))
         self._model, self._path, self._reader = model, path, reader
@@ -57,6 +65,8 @@ class IntakeDialog(AskingDialog):
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setWordWrap(True)
         self.table.verticalHeader().hide()
+        for column in range(3):
+            self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
         self.table.horizontalHeader().setSectionResizeMode(3, QHeaderView.ResizeMode.Stretch)
         self.leave_out = QCheckBox(self.tr("Leave the refused rows out; this is recorded"))
         self.leave_out.hide()
@@ -64,6 +74,13 @@ class IntakeDialog(AskingDialog):
         self.body.addWidget(self.summary)
         self.body.addWidget(self.bar)
         self.add_body(self.table)
+        self.patients = PatientRows(theme)
+        self.patients.said.connect(self._patient_said)
+        self.left = QLabel()
+        self.left.setProperty("role", "quiet")
+        self._clock = QElapsedTimer()
+        self.body.addWidget(self.left)
+        self.body.addWidget(self.patients)
         self.body.addWidget(self.leave_out)
         self.table.hide()
         self.resize(theme.px(820), theme.px(520))
@@ -71,7 +88,22 @@ class IntakeDialog(AskingDialog):
         self.summary.setText(self.tr("Reading {name}. Nothing is recorded yet.").format(name=path.name))
         self.bar.setRange(0, 0)
         model.runner.progressed.connect(self._progressed)
-        self._number = model.ask(intake_operations.read, path, done=self._read, failed=self._failed)
+        self._number = 0
+        self._ask()
+
+    def _ask(self) -> None:
+        """Read the file with all that was said of it."""
+        self.bar.show()
+        self.bar.setRange(0, 0)
+        self.left.clear()
+        self._clock.start()
+        self._number = self._model.ask(intake_operations.read, self._request, done=self._read, failed=self._failed)
+
+    def _patient_said(self, identifier: str, episode: str) -> None:
+        """A person says whose an identifier is: the file is read again with it."""
+        self.go.setEnabled(False)
+        self._request = replace(self._request, patients={**self._request.patients, identifier: episode})
+        self._ask()
 
     def reject(self) -> None:
         """Leave; what still runs is stopped and rolled back."""
@@ -91,11 +123,22 @@ class IntakeDialog(AskingDialog):
         if progress.number == self._number:
             self.bar.setRange(0, progress.total)
             self.bar.setValue(progress.done)
+            self.left.setText(self._time_left(progress))
+
+    def _time_left(self, progress: Progress) -> str:
+        """How long it will still take, once that can be told."""
+        spent = self._clock.elapsed() / 1000
+        if spent < 1 or not 0 < progress.done < progress.total:
+            return ""
+        seconds = spent * (progress.total - progress.done) / progress.done
+        return self.tr("about {seconds} s left").format(seconds=max(1, round(seconds)))
 
     def _read(self, outcome: Outcome[Intake]) -> None:
         self.intake = outcome.value
         self.bar.hide()
+        self.left.clear()
         self.summary.setText(self.words(outcome.value))
+        self.patients.show_unknown(outcome.value.unknown_patients, self._request.episodes)
         self._fill(outcome.value)
         self.leave_out.setVisible(bool(outcome.value.refusals) and outcome.value.whole)
         self._allow()
@@ -123,6 +166,9 @@ class IntakeDialog(AskingDialog):
                     count=len(intake.doubts)
                 )
             )
+        if intake.aside_count:
+            text = self.tr("{count} values are of no channel here or have no value: they are left aside.")
+            parts.append(text.format(count=intake.aside_count))
         if intake.refusals:
             parts.append(
                 self.tr("{count} rows are refused: the file is taken whole or not at all.").format(
@@ -136,19 +182,18 @@ class IntakeDialog(AskingDialog):
         return " ".join(parts)
 
     def _fill(self, intake: Intake) -> None:
-        found = [(r, self.tr("refused")) for r in intake.refusals] + [
-            (d, self.tr("in doubt")) for d in intake.doubts
-        ]
+        found: list[tuple[Refusal | Doubt, str]] = [(r, self.tr("refused")) for r in intake.refusals]
+        found += [(d, self.tr("in doubt")) for d in intake.doubts]
+        found += [(r, self.tr("left aside")) for r in intake.aside]
         self.table.setVisible(bool(found))
         self.table.setRowCount(min(len(found), MOST_ROWS))
         for n, (row, word) in enumerate(found[:MOST_ROWS]):
             what = f"{word}, {row.column}" if row.column else word
             for column, text in enumerate(
-                (str(row.line or ""), what, row.value, sentence(row.message, self._reader))
+                (str(row.line or ""), what, row.value[:MOST_LETTERS], sentence(row.message, self._reader))
             ):
                 self.table.setItem(n, column, QTableWidgetItem(text))
-        self.table.resizeColumnsToContents()
-        self.table.resizeRowsToContents()
+        QTimer.singleShot(0, self.table.resizeRowsToContents)  # once the last column has its width
 
     def _allow(self) -> None:
         intake = self.intake

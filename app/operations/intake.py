@@ -25,7 +25,8 @@ class ReadRequest:
 
     `mapping` is how a table is read (`mapping_name`: one that is kept; neither: one recognised by its header).
     `episode` is whose the file is, where it does not say; `patients` gives single identifiers their episode.
-    `zone` is for times without an offset; `clock_shift_s` is added to a device's times.
+    `zone` is for times without an offset; `clock_shift_s` is added to a device's times. `episodes` are offered to a
+    person who has to say whose an identifier is.
     """
 
     path: Path
@@ -39,6 +40,7 @@ class ReadRequest:
     sheet: str = ""
     encoding: str = ""
     header_at: int = 0
+    episodes: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -50,7 +50,7 @@ _TIME = ("time", "date", "datetime", "date time", "timestamp", "at", "zeit", "da
          "collected", "sample time", "recorded", "zeitpunkt", "datum zeit", "uhrzeit")  # fmt: skip
 _CLOCK = ("time", "clock", "uhrzeit", "zeit", "time of day")
 _EPISODE = ("episode", "patient", "subject", "id", "bed", "case")
-_BY = ("by", "user", "person", "staff", "initials", "nurse")
+_BY = ("by", "user", "person", "staff", "initials", "nurse", "operator")
 _CHANNEL = ("channel", "parameter", "analyte", "test", "name", "measurement", "item", "observation")
 _VALUE = ("value", "result", "reading")
 _UNIT = ("unit", "units")
@@ -157,6 +157,9 @@ def _uses(table: Table, taken: set[str], hints: dict[str, Message]) -> tuple[Col
             if hint is not None:
                 hints[name] = hint
         uses.append(ColumnUse(name, key, unit))
+    if any(CHANNELS[k].group is Group.GAS for k in used) and "gas_fio2" not in used:
+        # among gases it is the FiO2 that the sample was taken on: as a setting it would be a change of settings
+        uses = [replace(u, channel="gas_fio2") if u.channel == "fio2" else u for u in uses]
     return tuple(uses)
 
 

@@ -1,0 +1,273 @@
+"""How a table is to be read: columns, times, units and whose it is, with the first rows as they will be recorded."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import (
+    QComboBox,
+    QDialog,
+    QDialogButtonBox,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QScrollArea,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app.failure import Failure
+from app.intake_window.answers_form import AnswersForm
+from app.intake_window.column_table import ColumnTable
+from app.intake_window.preview_table import PreviewTable
+from app.operations import mapping as operations
+from app.operations.intake import ReadRequest
+from app.operations.mapping import Looked, LookRequest
+from app.operations.outcome import Outcome
+from app.session import SessionModel
+from app.theme import Theme
+from app.words import Reader, sentence
+from core.record.message import Message
+from storage.intake.mapping import ColumnUse, Mapping, open_questions
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+
+class MappingDialog(QDialog):
+    """`ready(ReadRequest)` when every question is answered and the person goes on. Nothing is recorded here."""
+
+    ready = Signal(object)
+
+    def __init__(
+        self, model: SessionModel, path: Path, reader: Reader, theme: Theme, parent: QWidget | None = None
+    ) -> None:
+        super().__init__(parent)
+        self._model, self._path, self._reader, self._theme = model, path, reader, theme
+        self.looked: Looked | None = None
+        self.mapping = Mapping()
+        self.setWindowTitle(self.tr("Take in {name}").format(name=path.name))
+        self.intro, self.asked, self.preview_word = QLabel(), QLabel(), QLabel()
+        self.sheet, self.kept = QComboBox(), QComboBox()
+        self._labels: dict[QComboBox, QLabel] = {}
+        self.columns = ColumnTable(theme, reader)
+        self.answers = AnswersForm(theme)
+        self.preview = PreviewTable(theme, reader)
+        self.name = QLineEdit()
+        self.buttons = QDialogButtonBox()
+        self.go = self.buttons.addButton(self.tr("Read the whole file"), QDialogButtonBox.ButtonRole.AcceptRole)
+        self.buttons.addButton(self.tr("Leave"), QDialogButtonBox.ButtonRole.RejectRole)
+        self._lay_out()
+        self.go.setEnabled(False)
+        self.go.clicked.connect(self._go_on)
+        self.buttons.rejected.connect(self.reject)
+        self.columns.changed.connect(self._column_changed)
+        self.answers.changed.connect(self._answered)
+        self.sheet.activated.connect(self._look_again)
+        self.kept.activated.connect(self._take_kept)
+        self.resize(theme.px(1240), theme.px(820))
+        self._ask()
+
+    # layout
+
+    def _lay_out(self) -> None:
+        px = self._theme.px
+        self.intro.setWordWrap(True)
+        self.asked.setWordWrap(True)
+        for label in (self.intro, self.asked):
+            label.setTextFormat(Qt.TextFormat.PlainText)
+        self.asked.setProperty("role", "strong")
+        self.preview_word.setText(self.tr("The first rows as they will be recorded"))
+        self.preview_word.setProperty("role", "emphasis")
+        self.go.setProperty("role", "primary")
+        self.name.setPlaceholderText(self.tr("a name, to be recognised next time"))
+        self.name.setAccessibleName(self.tr("Keep as"))
+        self.name.setMaxLength(80)
+        self.sheet.setAccessibleName(self.tr("Sheet"))
+        self.kept.setAccessibleName(self.tr("Mapping"))
+        column = QVBoxLayout(self)
+        column.setContentsMargins(px(20), px(16), px(20), px(16))
+        column.setSpacing(px(8))
+        column.addLayout(self._head())
+        column.addLayout(self._halves(), 5)
+        column.addWidget(self.preview_word)
+        column.addWidget(self.preview, 3)
+        column.addWidget(self.asked)
+        column.addLayout(self._foot())
+
+    def _head(self) -> QHBoxLayout:
+        head = QHBoxLayout()
+        head.addWidget(self.intro, 1)
+        for word, box in ((self.tr("Sheet"), self.sheet), (self.tr("Mapping"), self.kept)):
+            label = QLabel(word)
+            label.setProperty("role", "quiet")
+            label.setBuddy(box)
+            self._labels[box] = label
+            head.addWidget(label)
+            head.addWidget(box)
+            box.setMinimumContentsLength(14)
+        return head
+
+    def _halves(self) -> QHBoxLayout:
+        halves = QHBoxLayout()
+        halves.setSpacing(self._theme.px(16))
+        side = QScrollArea()
+        side.setWidget(self.answers)
+        side.setWidgetResizable(True)
+        side.setFixedWidth(self._theme.px(400))
+        halves.addWidget(self.columns, 1)
+        halves.addWidget(side)
+        return halves
+
+    def _foot(self) -> QHBoxLayout:
+        foot = QHBoxLayout()
+        keep = QLabel(self.tr("Keep as"))
+        keep.setBuddy(self.name)
+        foot.addWidget(keep)
+        foot.addWidget(self.name, 1)
+        foot.addStretch(1)
+        foot.addWidget(self.buttons)
+        return foot
+
+    # looking
+
+    def _ask(self, sheet: str = "") -> None:
+        self.asked.setText(self.tr("Looking at {name}. Nothing is recorded yet.").format(name=self._path.name))
+        request = LookRequest(self._path, self._model.session.zone, sheet)
+        self._model.ask(operations.look, request, done=self._show, failed=self._failed)
+
+    def _look_again(self) -> None:
+        self._ask(str(self.sheet.currentData() or ""))
+
+    def _show(self, outcome: Outcome[Looked]) -> None:
+        looked = self.looked = outcome.value
+        for box, words in ((self.sheet, looked.table.sheets), (self.kept, ("", *looked.kept))):
+            box.clear()
+            for word in words:
+                box.addItem(word or self.tr("as proposed"), word)
+        self.sheet.setCurrentIndex(max(0, self.sheet.findData(looked.table.dialect.sheet)))
+        for box, matters in ((self.sheet, len(looked.table.sheets) > 1), (self.kept, bool(looked.kept))):
+            box.setVisible(matters)
+            self._labels[box].setVisible(matters)
+        known = looked.recognised
+        self.kept.setCurrentIndex(max(0, self.kept.findData(known.name if known is not None else "")))
+        self._begin(known or looked.proposal.mapping)
+
+    def _take_kept(self) -> None:
+        if self.looked is not None:
+            kept = self.looked.kept.get(str(self.kept.currentData() or ""))
+            self._begin(kept or self.looked.proposal.mapping)
+
+    def _begin(self, mapping: Mapping) -> None:
+        """Show a mapping: its columns, its answers, its preview."""
+        self.mapping = replace(mapping, header=self.looked.table.header if self.looked is not None else ())
+        self.name.setText(mapping.name)
+        self._show_columns()
+        self._show_answers("")  # whose values they are is asked: the episode in hand may be another patient's
+        self._judge()
+
+    def _show_columns(self) -> None:
+        if self.looked is None:
+            return
+        table, m, hints = self.looked.table, self.mapping, self.looked.proposal.hints
+        if m.long is None:
+            rows = [(name, table.column(name)) for name in table.header]
+            self.columns.show_rows(rows, {c.column: c for c in m.columns}, self._taken(), hints)
+            return
+        words, values = table.column(m.long.channel), table.column(m.long.value)
+        of: dict[str, list[str]] = {name: [] for name in m.long.names}
+        for word, value in zip(words, values, strict=False):
+            of.setdefault(word, []).append(value)
+        uses = {w: ColumnUse(w, k, m.long.units.get(w, "")) for w, k in m.long.names.items()}
+        self.columns.show_rows(list(of.items()), uses, {}, hints, has_unit_column=bool(m.long.unit))
+
+    def _taken(self) -> dict[str, str]:
+        m = self.mapping
+        pairs = ((m.time.date, self.tr("the time")), (m.time.clock, self.tr("the clock")),
+                 (m.episode_column, self.tr("the episode")), (m.by_column, self.tr("the person")))  # fmt: skip
+        return {name: word for name, word in pairs if name}
+
+    def _show_answers(self, episode: str) -> None:
+        if self.looked is not None:
+            self.answers.show_answers(self.mapping, self.looked.table.header, self.looked.episodes, episode,
+                                      has_offsets=self.looked.proposal.has_offsets)  # fmt: skip
+
+    # answering
+
+    def _column_changed(self, column: str, channel: str, unit: str) -> None:
+        long = self.mapping.long
+        if long is None:
+            self.mapping = self.mapping.with_column(column, channel, unit)
+        else:
+            names, units = {**long.names, column: channel}, {**long.units, column: unit}
+            self.mapping = replace(self.mapping, long=replace(long, names=names, units=units))
+        row = next(r for r in range(self.columns.rowCount()) if self._column_of(r) == column)
+        hint = self.looked.proposal.hints.get(column) if self.looked is not None else None
+        self.columns.show_answer(row, ColumnUse(column, channel, unit), hint)
+        self._show_answers(self.answers.episode_key)
+        self._judge()
+
+    def _column_of(self, row: int) -> str:
+        item = self.columns.item(row, 0)
+        return item.text() if item is not None else ""
+
+    def _answered(self) -> None:
+        before = self._taken()
+        self.mapping = self.answers.mapping_with(self.mapping)
+        if self._taken() != before:
+            for name in self._taken():
+                self.mapping = self.mapping.with_column(name, "")
+            self._show_columns()
+        self._show_answers(self.answers.episode_key)
+        self._judge()
+
+    def questions(self) -> tuple[Message, ...]:
+        """What is still to be answered."""
+        offsets = self.looked is not None and self.looked.proposal.has_offsets
+        return open_questions(self.mapping, episode_given=bool(self.answers.episode_key), has_offsets=offsets)
+
+    def _judge(self) -> None:
+        """Show what is open, and the first rows."""
+        if self.looked is None:
+            return
+        from storage.intake.table_preview import preview
+        from storage.intake.table_rows import Answers
+
+        asked = self.questions()
+        self.go.setEnabled(not asked)
+        self.intro.setText(self._about())
+        if asked:
+            more = self.tr(" ({count} more to answer)").format(count=len(asked) - 1) if len(asked) > 1 else ""
+            self.asked.setText(sentence(asked[0], self._reader) + more)
+        else:
+            self.asked.setText(self.tr("All is answered. The whole file is read next; nothing is recorded yet."))
+        answers = Answers(self.answers.episode_key, self.answers.shift.value())
+        self.preview.show_rows(preview(self.looked.table, self.mapping, answers))
+
+    def _about(self) -> str:
+        """How the table is written, in a line."""
+        if self.looked is None:
+            return ""
+        d, count = self.looked.table.dialect, len(self.looked.table.header)
+        if self.looked.table.book is not None:
+            return self.tr("{count} columns, header on row {line}").format(count=count, line=d.header_line)
+        marks = {",": self.tr("comma"), ";": self.tr("semicolon"), "\t": self.tr("tab"), "|": self.tr("bar")}
+        sure = "" if d.encoding_is_sure else self.tr(" (assumed: look at letters with accents)")
+        text = self.tr("{count} columns apart by {mark}, header on line {line}, text in {encoding}{sure}")
+        return text.format(count=count, mark=marks[d.delimiter], line=d.header_line, encoding=d.encoding.upper(),
+                           sure=sure)  # fmt: skip
+
+    def _go_on(self) -> None:
+        self.mapping = replace(self.mapping, name=self.name.text().strip())
+        if self.mapping.name:
+            self._model.ask(operations.keep, self.mapping, failed=self._failed)
+        request = ReadRequest(self._path, self.mapping, "", self.answers.episode_key, {}, self._model.session.zone,
+                              self.answers.shift.value(), "", str(self.sheet.currentData() or ""))  # fmt: skip
+        self.accept()
+        self.ready.emit(request)
+
+    def _failed(self, failure: Failure) -> None:
+        self.go.setEnabled(False)
+        self.asked.setText(sentence(failure.message, self._reader))

@@ -1,0 +1,64 @@
+"""Identifiers of patients whose episode is not known: a person says each once, and it is kept."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import QComboBox, QGridLayout, QLabel, QPushButton, QWidget
+
+from app.theme import Theme
+
+MOST = 8
+"""Identifiers asked for at a time; the next ones follow when these are answered."""
+
+
+class PatientRows(QWidget):
+    """`said(identifier, episode)` when a person says whose an identifier is."""
+
+    said = Signal(str, str)
+
+    def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._grid = QGridLayout(self)
+        self._grid.setContentsMargins(0, 0, 0, 0)
+        self._grid.setHorizontalSpacing(theme.px(8))
+        self._grid.setColumnStretch(1, 1)
+        self.boxes: dict[str, QComboBox] = {}
+        self.buttons: dict[str, QPushButton] = {}
+        self.hide()
+
+    def show_unknown(self, identifiers: Sequence[str], episodes: Sequence[str]) -> None:
+        """Ask for identifiers; none hides the rows. Nothing is chosen beforehand."""
+        while self._grid.count():
+            item = self._grid.takeAt(0)
+            widget = item.widget() if item is not None else None
+            if widget is not None:
+                widget.hide()
+                widget.deleteLater()
+        self.boxes, self.buttons = {}, {}
+        for row, text in enumerate(identifiers[:MOST]):
+            self._add(row, text, episodes)
+        self.setVisible(bool(identifiers))
+
+    def _add(self, row: int, text: str, episodes: Sequence[str]) -> None:
+        label = QLabel(self.tr("Patient {identifier} is").format(identifier=text))
+        box, button = QComboBox(), QPushButton(self.tr("Confirm"))
+        box.setEditable(True)
+        box.setInsertPolicy(QComboBox.InsertPolicy.NoInsert)
+        box.setAccessibleName(label.text())
+        box.addItems(["", *episodes])
+        line = box.lineEdit()
+        if line is not None:
+            line.setPlaceholderText(self.tr("an episode"))
+        button.setProperty("role", "small")
+        button.clicked.connect(self._confirm)
+        for column, widget in enumerate((label, box, button)):
+            self._grid.addWidget(widget, row, column)
+        self.boxes[text], self.buttons[text] = box, button
+
+    def _confirm(self) -> None:
+        text = next(t for t, b in self.buttons.items() if b is self.sender())
+        episode = self.boxes[text].currentText().strip()
+        if episode:
+            self.said.emit(text, episode)
