@@ -82,10 +82,18 @@ QComboBox::drop-down {{ border: 0; width: {g6}px; }}
 QComboBox QAbstractItemView {{ background: {raised}; border: 1px solid {line}; outline: 0; }}
 
 QCheckBox, QRadioButton {{ spacing: {g2}px; min-height: {target}px; background: transparent; }}
-QCheckBox::indicator {{
+QCheckBox::indicator, QListView::indicator, QTreeView::indicator {{
     width: {g4}px; height: {g4}px; background: {raised}; border: 1px solid {edge}; border-radius: {g1}px;
 }}
-QCheckBox::indicator:checked {{ background: {accent}; border: 1px solid {accent}; }}
+QCheckBox::indicator:checked, QListView::indicator:checked, QTreeView::indicator:checked {{
+    background: {accent}; border: 1px solid {accent}; }}
+QSlider:horizontal {{ min-height: {g6}px; }}
+QSlider::groove:horizontal {{ height: {g1}px; background: {line}; border-radius: 2px; }}
+QSlider::sub-page:horizontal {{ background: {accent}; border-radius: 2px; }}
+QSlider::handle:horizontal {{
+    width: {g4}px; margin: -{g2}px 0; background: {raised}; border: 1px solid {edge}; border-radius: {g1}px;
+}}
+QSlider::handle:horizontal:focus {{ border: 2px solid {accent}; }}
 QCheckBox::indicator:disabled {{ border-color: {line}; }}
 QCheckBox:focus, QRadioButton:focus {{ border: 2px solid {accent}; border-radius: {g1}px; }}
 

@@ -53,16 +53,20 @@ class CourseChart(QWidget):
         return QSize(self._theme.px(480), self._theme.px(5 * 84 + 40))
 
     def paintEvent(self, event: QPaintEvent) -> None:  # noqa: ARG002
+        painter = QPainter(self)
+        self.paint_on(painter, self.width(), self.height())
+        painter.end()
+
+    def paint_on(self, painter: QPainter, width: int, height: int) -> None:
+        """Paint the rows at the painter's origin on a surface of this size."""
         if self.comparison is None or not self.comparison.names:
             return
-        painter = QPainter(self)
         px, gap = self._theme.px, self._theme.px(6)
         foot = px(34)
-        height = (self.height() - foot - gap * len(self.comparison.rows)) / len(self.comparison.rows)
+        each = (height - foot - gap * len(self.comparison.rows)) / len(self.comparison.rows)
         for n, row in enumerate(self.comparison.rows):
-            self._draw_row(painter, row, QRectF(0, n * (height + gap), self.width() - 1, height))
-        self._draw_hours(painter, QRectF(0, self.height() - foot, self.width(), foot))
-        painter.end()
+            self._draw_row(painter, row, QRectF(0, n * (each + gap), width - 1, each))
+        self._draw_hours(painter, QRectF(0, height - foot, width, foot))
 
     def _view(self, box: QRectF) -> QRectF:
         px = self._theme.px
@@ -98,7 +102,7 @@ class CourseChart(QWidget):
             Qt.AlignmentFlag.AlignLeft,
             unit,
         )
-        ticks, decimals = value_ticks(row.low, row.high, view.height(), px(26))
+        ticks, decimals = value_ticks(row.low, row.high, view.height(), px(18))
         for value in ticks:
             y = round(self._y(value, row, view))
             painter.fillRect(QRectF(view.left(), y, view.width(), 1), QColor(c.line))

@@ -158,7 +158,7 @@ class LaneWords:
             if pressure is not None and pressure != pressure:
                 pressure = None
             for a, b in _outside(begin, s.end, course):
-                yield SupportPiece(a, b, pressure, settings_word(s.settings))
+                yield SupportPiece(a, b, pressure)  # its words stand at the change that began it
 
     def _items(self, f: EpisodeFigures, course: Course) -> Iterator[LaneItem]:
         judged = dict(_judged(f))
