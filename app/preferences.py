@@ -111,10 +111,11 @@ def _accepted(key: str, value: Any) -> bool:
     if key == "window":
         return len(value) in (0, 4) and all(isinstance(n, int) for n in value)
     if key == "shift_starts":
-        return len(value) >= 1 and all(isinstance(v, str) and _is_time(v) for v in value)
+        return len(value) >= 1 and all(isinstance(v, str) and is_time(v) for v in value)
     return key != "recent_stores" or all(isinstance(v, str) for v in value)
 
 
-def _is_time(text: str) -> bool:
+def is_time(text: str) -> bool:
+    """Whether a text is a time of day, HH:MM."""
     hour, _, minute = text.partition(":")
     return hour.isdigit() and minute.isdigit() and int(hour) < 24 and int(minute) < 60
