@@ -5,17 +5,19 @@ The texts name the policy's own limits with their sources, so that a changed pol
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from PySide6.QtCore import QCoreApplication
 
+from app.figure_rows import doubts_of
 from app.finding_names import due_name, lever_name, marker_name
-from app.formats import clock, fixed, fraction, gas_pressure, minutes, quantity, signed, trimmed, wall
+from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
 from app.phrases import gas_name, gas_words
 from app.theme import Tier, tier_word, verdict_of, verdict_word
 from app.words import Reader, sentence
 from app.words.template import quantity_name
+from core.judgement.gas_reading import read
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import Limit
 from core.judgement.shapes import (
@@ -27,13 +29,18 @@ from core.judgement.shapes import (
     ResponseFigure,
     ScoreFigure,
 )
+from core.record.instant import Instant
 
 translate = QCoreApplication.translate
 
 
 @dataclass(frozen=True, slots=True)
 class Explanation:
-    """`inputs` are (name, value, when); `rules` and `notes` whole sentences."""
+    """`inputs` are (name, value, when); `rules` and `notes` whole sentences.
+
+    `when` says of which moment the figure is and how old; `doubt` why this value is not to be relied on; `reason`
+    why there is none; `population` for whom it was made and whether this patient belongs there.
+    """
 
     title: str
     rules: tuple[str, ...] = ()
@@ -41,17 +48,27 @@ class Explanation:
     notes: tuple[str, ...] = ()
     source: str = ""
     sure: str = ""
+    when: str = ""
+    doubt: str = ""
+    reason: str = ""
+    formula: str = ""
+    population: str = ""
 
     def as_text(self) -> str:
         """All of it in plain words, to be copied."""
-        parts = [self.title, *self.rules]
+        parts = [self.title, self.when, self.reason, self.doubt]
+        if self.formula:
+            parts.append(translate("explain", "Formula: {formula}").format(formula=self.formula))
+        parts += self.rules
         parts += ["  ".join(p for p in row if p) for row in self.inputs]
+        if self.population:
+            parts.append(self.population)
         parts += self.notes
         if self.source:
             parts.append(translate("explain", "Source: {source}").format(source=self.source))
         if self.sure:
             parts.append(translate("explain", "How sure: {sure}").format(sure=sure_words(self.sure)))
-        return "\n".join(parts)
+        return "\n".join(p for p in parts if p)
 
 
 def sure_words(sure: str) -> str:
@@ -152,8 +169,9 @@ class Explainer:
         return rule.format(**span), told
 
     def gas(self, gas: GasFigure) -> Explanation:
-        """A gas: what was reported, what was computed from it and how, why something is absent."""
-        state = self.policy.state
+        """A gas: what it says, what was reported, what was computed from it and how, why something is absent."""
+        state, reading = self.policy.state, read(gas)
+        plain = reading.classification or reading.classification_reason or gas.rule_out
         rules = (
             translate("explain", "Severe: pH below {severe}. Acidotic: pH below {acidotic}.").format(
                 severe=fixed(state.severe_below_ph.value, 2), acidotic=fixed(state.acidotic_below_ph.value, 2)
@@ -162,42 +180,25 @@ class Explainer:
             "HCO3 = 0.0307 x PCO2 x 10^(pH - 6.1)",
             "SBE = HCO3 - 24.8 + 16.2 x (pH - 7.40)",
         )
+        told = (*((plain,) if plain is not None else ()), *reading.steps)
         when = clock(gas.at, self.reader.zone)
-        notes = [f"{key.partition('_')[0]}: {sentence(m, self.reader)}" for key, m in gas.reasons.items()]
-        notes += [sentence(m, self.reader) for m in gas.warnings]
+        notes = [f"{_field_name(key)}: {sentence(m, self.reader)}" for key, m in gas.reasons.items()]
+        notes += [sentence(m, self.reader) for m in (*gas.warnings, *gas.explanations)]
         return Explanation(
             f"{when} {gas_name(gas)}: {gas_words(gas, self.reader.gas_unit)}",
-            rules,
+            (*(whole(sentence(m, self.reader)) for m in told), *rules),
             tuple(self._gas_inputs(gas, when)),
             tuple(notes),
             "Henderson-Hasselbalch; CLSI C46",
             "confirmed",
+            doubt=doubts_of((gas,), self.reader).get(gas.at, ""),
         )
 
-    def score(self, name: str, score: ScoreFigure) -> Explanation:
-        """A score: each input with its value, its time and the points it gave; what is missing."""
-        inputs = []
-        for key, part in score.inputs.items():
-            value = translate("explain", "missing") if part.value is None else _plain(key, part.value)
-            points = (
-                ""
-                if part.points is None
-                else translate("explain", ", {points} points").format(points=trimmed(part.points))
-            )
-            when = clock(part.at, self.reader.zone) if part.at is not None else ""
-            inputs.append((key.replace("_", " "), f"{value}{points}", when))
-        notes = [sentence(m, self.reader) for m in (score.caveat, *score.reasons.values()) if m is not None]
-        if score.missing:
-            notes.append(
-                translate(
-                    "explain", "Missing inputs are taken at their best and at their worst, never as normal."
-                )
-            )
-        if score.population == "outside":
-            notes.append(
-                translate("explain", "Outside the population it was validated in: shown, never a flag.")
-            )
-        return Explanation(name, (), tuple(inputs), tuple(notes))
+    def score(self, key: str, score: ScoreFigure, now: Instant | None = None) -> Explanation:
+        """A score: each input with its value, its time and the points it gave; what is missing; for whom."""
+        from app.explain_figures import explain_score
+
+        return explain_score(key, score, self.reader, now)
 
     def due(self, due: DueFigure) -> Explanation:
         """A due item: why, from when, until when."""
@@ -222,6 +223,15 @@ class Explainer:
         return Explanation(
             lever_name(lever.key, self.reader), tuple(sentence(m, self.reader) for m in texts), (), (note,)
         )
+
+    def levers_without_effect(self, levers: Sequence[LeverFigure]) -> Explanation:
+        """Levers that cannot act now, each with its reason."""
+        told = []
+        for lever in levers:
+            why = " ".join(sentence(m, self.reader) for m in lever.why)
+            told.append(f"{lever_name(lever.key, self.reader)}: {why}")
+        note = translate("explain", "A qualified person decides.")
+        return Explanation(translate("explain", "What cannot act now"), tuple(told), (), (note,))
 
     def _values(self, ph: float | None, paco2: float | None) -> str:
         parts = [f"pH {fixed(ph, 2)}"] if ph is not None else []
@@ -253,12 +263,29 @@ class Explainer:
         yield from ((name, value, when) for name, value in rows if value is not None)
 
 
+def whole(text: str) -> str:
+    """A whole sentence: large first letter, full stop; a name like pH keeps its letters."""
+    if not text:
+        return ""
+    large = text if text.startswith("pH") else text[:1].upper() + text[1:]
+    return large if large[-1] in ".!?" else f"{large}."
+
+
+def _field_name(field: str) -> str:
+    """What a figure of a gas that has no value is called."""
+    names = {
+        "pf_mmHg": "P/F",
+        "aa_gradient_mmHg": "A-a",
+        "hco3_calculated_mmol_L": translate("explain", "HCO3, calculated"),
+        "sbe_mmol_L": "SBE",
+        "consistent": translate("explain", "Reported against calculated bicarbonate"),
+        "state": translate("explain", "State"),
+    }
+    return names.get(field, field.replace("_", " "))
+
+
 def _mmol(value: float | None) -> str | None:
     return None if value is None else f"{fixed(value, 1)} mmol/L"
-
-
-def _plain(key: str, value: float | str) -> str:
-    return value if isinstance(value, str) else quantity(key, value)
 
 
 def _limit_value(name: str, value: float) -> str:

@@ -35,10 +35,12 @@ def test_a_gas_shows_formulas_and_inputs():
 
 
 def test_a_score_says_what_is_missing_and_that_it_is_outside_its_population():
-    found = EXPLAINER.score("HACOR", FIGURES.scores["hacor"])
+    found = EXPLAINER.score("hacor", FIGURES.scores["hacor"])
     assert any("never as normal" in n for n in found.notes)
-    assert any("Outside the population" in n for n in found.notes)
-    assert ("ph", "7.22, 4 points", "04:20") in found.inputs
+    assert "outside the population" in found.population
+    assert found.formula
+    assert found.source.startswith("Duan")
+    assert ("pH", "7.22, 4 points", "28-Mar-2026 04:20") in found.inputs
 
 
 def test_due_items_and_levers():
