@@ -33,7 +33,7 @@ class Deed:
     @property
     def records(self) -> bool:
         """Whether it writes into the record; greyed while the past is looked at."""
-        return (self.menu == "log" and self.key != "focus_strip") or self.key == "take_in"
+        return (self.menu == "log" and self.key != "focus_strip") or self.key in ("take_in", "close_handover")
 
     @property
     def slot(self) -> str:
@@ -64,8 +64,8 @@ DEEDS: Final = (
          parted=True),
     Deed("save_handover", "file", QT_TRANSLATE_NOOP("action", "Save handover as PDF..."), ("Ctrl+P",),
          QT_TRANSLATE_NOOP("action", "Write the handover sheet of this shift as a PDF.")),
-    Deed("save_picture", "file", QT_TRANSLATE_NOOP("action", "Save picture of this screen..."), ("Ctrl+Shift+S",),
-         QT_TRANSLATE_NOOP("action", "Save what the window shows as a PNG picture.")),
+    Deed("save_picture", "file", QT_TRANSLATE_NOOP("action", "Save picture of this page..."), ("Ctrl+Shift+S",),
+         QT_TRANSLATE_NOOP("action", "Draw what the page shows as PDF, SVG or PNG, at print size.")),
     Deed("sign_in", "file", QT_TRANSLATE_NOOP("action", "Change person..."), ("Ctrl+I",),
          QT_TRANSLATE_NOOP("action", "Say by initials who is logging from now on."), parted=True),
     Deed("quit", "file", QT_TRANSLATE_NOOP("action", "Quit"), ("Ctrl+Q",),
@@ -158,6 +158,19 @@ DEEDS: Final = (
                            "span."), parted=True),
     Deed("save_statistics", "review", QT_TRANSLATE_NOOP("action", "Save shift figures as CSV..."), ("Ctrl+Shift+F",),
          QT_TRANSLATE_NOOP("action", "Write the shift figures as a table that spreadsheets read.")),
+    Deed("close_handover", "review", QT_TRANSLATE_NOOP("action", "Close handover..."), ("Ctrl+Shift+H",),
+         QT_TRANSLATE_NOOP("action", "Keep this shift's sheet in the ledger as it is printed now, for good."),
+         parted=True),
+    Deed("closed_handovers", "review", QT_TRANSLATE_NOOP("action", "Closed handovers..."), ("Ctrl+Shift+O",),
+         QT_TRANSLATE_NOOP("action", "Open a closed handover again, byte for byte.")),
+    Deed("blank_form", "review", QT_TRANSLATE_NOOP("action", "Blank paper form..."), ("Ctrl+Shift+B",),
+         QT_TRANSLATE_NOOP("action", "The handover as a form to fill in by hand, for when machines are down."),
+         needs_store=False),
+    Deed("shift_times", "review", QT_TRANSLATE_NOOP("action", "Shift times..."), ("Ctrl+Shift+M",),
+         QT_TRANSLATE_NOOP("action", "The times of day at which the ward's shifts begin."), needs_store=False),
+    Deed("export_values", "review", QT_TRANSLATE_NOOP("action", "Export values..."), ("Ctrl+Shift+E",),
+         QT_TRANSLATE_NOOP("action", "Write values as CSV: all or some, with names or de-identified."),
+         parted=True),
     Deed("explain", "view", QT_TRANSLATE_NOOP("action", "Explain this"), ("F2", "?"),
          QT_TRANSLATE_NOOP("action", "Say how the selected figure, flag or verdict came about.")),
     Deed("table", "view", QT_TRANSLATE_NOOP("action", "As a table..."), ("Ctrl+Shift+T",),

@@ -19,9 +19,9 @@ from PySide6.QtWidgets import (
 )
 
 from app.chart.acid_base_map import AcidBaseMap
-from app.chart.shapes import MapGas
+from app.chart.shapes import MapGas, MapSpec
 from app.episode_shown import EpisodeOnScreen
-from app.map_words import class_words, map_spec, map_table, response_words, steps_of
+from app.map_words import class_words, map_spec, map_table, response_words, steps_of, titled_spec
 from app.phrases import gas_name, gas_words
 from app.tables import Table
 from app.theme import Theme
@@ -118,6 +118,10 @@ class MapView(QWidget):
     def on_screen(self) -> EpisodeOnScreen | None:
         """What is shown."""
         return self._on
+
+    def picture_spec(self) -> MapSpec | None:
+        """The map for a picture by itself."""
+        return None if self._on is None else titled_spec(self._on.figures, self._reader())
 
     def as_table(self) -> Table | None:
         """The map as a table and in words."""

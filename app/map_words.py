@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 from math import ceil, floor
 
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
@@ -42,6 +43,14 @@ def map_spec(figures: EpisodeFigures, reader: Reader) -> MapSpec:
         (translate("map", "Dotted: equal bicarbonate, mmol/L. Bands: acute and chronic hypercapnia, as classified."),
          translate("map", "Numbers in order of time. Venous gases stand apart from the path.")),
     )  # fmt: skip
+
+
+def titled_spec(figures: EpisodeFigures, reader: Reader) -> MapSpec:
+    """The map for a picture by itself: it says whose it is, and as of when."""
+    spec = map_spec(figures, reader)
+    whose = translate("map", "{label}, as of {time}").format(
+        label=figures.label, time=wall(figures.as_of, reader.zone))  # fmt: skip
+    return replace(spec, notes=(whose, *spec.notes))
 
 
 def _range(values: list[float | None], least: tuple[float, float], step: float) -> tuple[float, float]:

@@ -23,6 +23,24 @@ class Shift:
     night: bool
 
 
+MOST_STARTS: Final = 6
+
+
+def read_starts(text: str) -> tuple[str, ...] | None:
+    """The times of day at which shifts begin, in order; None where the text names none, too many or no time.
+
+    >>> read_starts("19:30, 7:30"), read_starts("25:00"), read_starts("")
+    (('07:30', '19:30'), None, None)
+    """
+    found = set()
+    for word in text.replace(",", " ").replace(";", " ").split():
+        hour, _, minute = word.replace(".", ":").partition(":")
+        if not (hour.isdigit() and minute.isdigit() and int(hour) < 24 and int(minute) < 60):
+            return None
+        found.add(f"{int(hour):02d}:{int(minute):02d}")
+    return tuple(sorted(found)) if 1 <= len(found) <= MOST_STARTS else None
+
+
 def shift_of(moment: Instant, zone: str, starts: Sequence[str] = STARTS) -> Shift:
     """The shift that a moment lies in. A start that the clock skips begins at the next hour it shows.
 

@@ -138,6 +138,11 @@ class StatisticsView(QWidget):
         """Say that figures are being counted, or why they cannot be."""
         self.said.setText(text)
 
+    @property
+    def reader(self) -> Reader:
+        """For whom it is written."""
+        return self._reader
+
     def as_table(self) -> Table | None:
         """The figures as a table and in words."""
         if self.found is None:

@@ -19,7 +19,7 @@ from app.failure import Failure
 from app.first_page import FirstPage
 from app.known_strip import KnownStrip
 from app.log_strip import LogStrip
-from app.opened import Opened, let_go
+from app.opened import Opened, is_on_a_screen, let_go
 from app.pages import Pages
 from app.preferences import Preferences
 from app.progress_line import ProgressLine
@@ -67,7 +67,7 @@ class MainWindow(QMainWindow):
         self.setMinimumSize(*LEAST_SIZE)
         self._set_ticks()
         self.resize(*(preferences.window[2:] or USUAL_SIZE))
-        if preferences.window:
+        if preferences.window and is_on_a_screen(preferences.window):
             self.move(*preferences.window[:2])
         self.first: FirstPage | None = None
         self.show_first_page()
@@ -404,6 +404,7 @@ class MainWindow(QMainWindow):
             self.prefer(window=(box.x(), box.y(), box.width(), box.height()))
         self.close_model()
         self.doers.file.forget_sample()
+        self.doers.review.forget_opened()
         super().closeEvent(event)
 
     def _clear_column(self) -> None:

@@ -4,7 +4,7 @@ A chart is laid out off-screen at the wanted size and painted into the device.
 """
 
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Protocol
 
 from PySide6.QtCore import QMarginsF, QRectF, QSize, QSizeF, Qt
 from PySide6.QtGui import QColor, QImage, QPageSize, QPainter, QPdfWriter
@@ -18,12 +18,22 @@ from app.theme import Theme
 if TYPE_CHECKING:
     from app.chart.stack import PanelStack
 
-Spec = StackSpec | LanesSpec | MapSpec
+
+
+class Painted(Protocol):
+    """Something that paints itself at any size, without being a chart of this package."""
+
+    def paint_on(self, painter: QPainter, width: int, height: int) -> None:
+        """Paint at the painter's origin on a surface of this size."""
+
+
+ChartSpec = StackSpec | LanesSpec | MapSpec
+Spec = ChartSpec | Painted
 _DOTS_PER_INCH = 96  # one pixel of a chart is 1/96 inch on paper
 
 
 def chart_of(
-    spec: Spec, theme: Theme, width: int, height: int, scale: float = 1.0
+    spec: ChartSpec, theme: Theme, width: int, height: int, scale: float = 1.0
 ) -> "PanelStack | WardLanes | AcidBaseMap":
     """A chart laid out off-screen at a size in pixels, to be painted with `scale` dots per pixel."""
     chart = _made(spec, theme)
@@ -38,7 +48,7 @@ def chart_of(
     return chart
 
 
-def _made(spec: Spec, theme: Theme) -> "PanelStack | WardLanes | AcidBaseMap":
+def _made(spec: ChartSpec, theme: Theme) -> "PanelStack | WardLanes | AcidBaseMap":
     if isinstance(spec, StackSpec):
         from app.chart.stack import PanelStack  # brings pyqtgraph, which a picture of the ward does without
 
@@ -117,6 +127,9 @@ def paint_chart(spec: Spec, theme: Theme, painter: QPainter, width: int, height:
 
 
 def _paint(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int, scale: float) -> None:
+    if not isinstance(spec, StackSpec | LanesSpec | MapSpec):
+        spec.paint_on(painter, width, height)
+        return
     chart = chart_of(spec, theme, width, height, scale)
     try:
         chart.paint_on(painter, width, height)

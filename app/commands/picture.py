@@ -1,9 +1,10 @@
-"""`luffmark picture EPISODE --out FILE`: an episode's panels as PNG, SVG or PDF, drawn at its own size."""
+"""`luffmark picture EPISODE... --what panels|map|compare --out FILE`: PNG, SVG or PDF, drawn at its own size."""
 
 from __future__ import annotations
 
 import argparse
 import sys
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -11,35 +12,65 @@ from app.commands.context import Context
 from app.operations import figures as operations
 from app.operations import panel as panels
 from app.operations import policy as policies
+from app.picture import SUFFIXES, Picture, write_picture
 
 if TYPE_CHECKING:
-    from app.chart.shapes import StackSpec
     from app.episode_shown import EpisodeOnScreen
+    from app.theme import Theme
     from storage.store import Store
-
-SUFFIXES = (".png", ".svg", ".pdf")
-_SHARP = 2.0
-"""Dots per pixel of a PNG, so that it prints well."""
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
-    """Draw the panels the user has for this kind of episode, or the shipped ones."""
+    """Draw an episode's panels (those the user has for its kind, or the shipped ones), its map, or a comparison."""
     if args.out.suffix.lower() not in SUFFIXES:
         print(f"luffmark: '{args.out}' must end in {', '.join(SUFFIXES)}", file=sys.stderr)
+        return 2
+    if (len(args.episode) > 1) != (args.what == "compare"):
+        wanted = "two to eight episodes" if args.what == "compare" else "one episode"
+        print(f"luffmark: picture --what {args.what} needs {wanted}", file=sys.stderr)
         return 2
     _check_writable(args.out)
     as_of = context.now() if args.as_of is None else args.as_of
     from app.off_screen import gui_application
+    from app.theme import THEMES
 
-    with context.open(read_only=True) as store:
-        request = operations.EpisodeRequest(args.episode, as_of, args.as_known_at)
-        with gui_application():
-            shown = _shown(context, store, request)
-            from app.episode.stack_words import stack_of
-
-            _draw(stack_of(shown, as_of), args.out, args.size, args.theme, shown.figures.label)
-    context.answer(f"{args.out}", {"file": str(args.out), "episode": args.episode})
+    with context.open(read_only=True) as store, gui_application():
+        requests = [operations.EpisodeRequest(key, as_of, args.as_known_at) for key in args.episode]
+        theme = THEMES[args.theme]
+        picture = _MADE[args.what](context, store, requests, theme)
+        write_picture(picture if args.size is None else replace(picture, size=args.size), theme, args.out)
+    context.answer(f"{args.out}", {"file": str(args.out), "what": args.what, "episodes": args.episode})
     return 0
+
+
+def _panels(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
+    from app.episode.stack_words import stack_of
+
+    shown = _shown(context, store, requests[0])
+    return Picture(stack_of(shown, requests[0].as_of), shown.figures.label)
+
+
+def _map(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
+    from app.map_words import titled_spec
+
+    figures = operations.of_episode(store, context.by, context.now(), requests[0]).value.figures
+    spec = titled_spec(figures, context.reader())
+    return Picture(spec, spec.name, (900, 760))
+
+
+def _compare(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
+    from app.compare.courses import compare
+    from app.compare.picture import ComparisonPicture
+    from app.course import course_of
+    from app.ward.lane_words import OnWard
+
+    answers = {r.episode: operations.of_episode(store, context.by, context.now(), r).value for r in requests}
+    chosen = [OnWard(a.figures, course_of(a.record, a.figures.as_of)) for a in answers.values()]
+    title = "Episodes by hours since the start of support"
+    return Picture(ComparisonPicture(compare(chosen, answers, context.gas_unit), theme, title), title, (1280, 960))
+
+
+_MADE = {"panels": _panels, "map": _map, "compare": _compare}
 
 
 def _shown(context: Context, store: Store, request: operations.EpisodeRequest) -> EpisodeOnScreen:
@@ -59,20 +90,6 @@ def _shown(context: Context, store: Store, request: operations.EpisodeRequest) -
     return EpisodeOnScreen(
         answer.record.until(request.as_of), answer.figures, course, policy, chosen, context.gas_unit
     )
-
-
-def _draw(spec: StackSpec, path: Path, size: tuple[int, int], theme_name: str, title: str) -> None:
-    from app.chart.render import image_of, pdf_of, svg_of
-    from app.theme import THEMES
-
-    theme, (width, height) = THEMES[theme_name], size
-    suffix = path.suffix.lower()
-    if suffix == ".svg":
-        svg_of(spec, theme, width, height, path, title)
-    elif suffix == ".pdf":
-        pdf_of(spec, theme, width, height, path, title)
-    elif not image_of(spec, theme, width, height, _SHARP).save(str(path)):
-        raise OSError(5, "the picture could not be written", str(path))
 
 
 def _check_writable(path: Path) -> None:

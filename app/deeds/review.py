@@ -2,14 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtWidgets import QFileDialog
-
-from app.deeds.doer import Doer
-from app.failure import Failure, failure_of
+from app.deeds.closing import ClosingDeeds
+from app.failure import Failure
 from app.operations.outcome import Outcome
 from app.words import sentence
 from core.record.instant import MINUTE, Instant
@@ -22,14 +18,13 @@ if TYPE_CHECKING:
 STEP_MIN = 15
 
 
-class ReviewDeeds(Doer):
+class ReviewDeeds(ClosingDeeds):
     """Serves the menu Review."""
 
     _direction = 0
     _known: CameLater | None = None
     _known_at: Instant = 0
     _span: tuple[Instant, Instant] | None = None
-    _to_window = True
 
     # as it was known
 
@@ -159,23 +154,6 @@ class ReviewDeeds(Doer):
             self.window.say(self.tr("The shift figures are still being counted."))
             return
         data = as_csv(found, self.window.plain_reader).encode("utf-8")
-        self._ask_and_write(self.tr("Save shift figures"), "shift-figures.csv", "CSV (*.csv)", data)
-
-    def _ask_and_write(self, title: str, name: str, kinds: str, data: bytes) -> None:
-        chosen, _ = QFileDialog.getSaveFileName(self.window, title, str(Path.home() / name), kinds)
-        if chosen:
-            self.write(Path(chosen), data)
-
-    def write(self, path: Path, data: bytes) -> None:
-        """Write a file whole, and say so or say why not."""
-        from app.whole_file import write_whole
-
-        self._try(path, lambda: write_whole(path, data))
-
-    def _try(self, path: Path, work: Callable[[], object]) -> None:
-        try:
-            work()
-        except OSError as error:
-            self.window.show_failure(failure_of(error))
-            return
-        self.window.say(self.tr("{path} was written.").format(path=path))
+        path = self.ask_path(self.tr("Save shift figures"), "shift-figures.csv", self.tr("CSV (*.csv)"))
+        if path is not None:
+            self.write(path, data)

@@ -77,13 +77,14 @@ class WardDeeds(Doer):
         self.pages.handover.say(self.tr("Gathering the shift..."))
         self.model.ask(
             handover.prepare,
-            self._request(),
+            self.handover_request(),
             done=self._gathered,
             failed=self._not_gathered,
             subject="handover",
         )
 
-    def _request(self) -> handover.HandoverRequest:
+    def handover_request(self) -> handover.HandoverRequest:
+        """The shift that is looked at, as far as it has come."""
         from app.operations import handover
 
         shift, session = self.window.shift(), self.model.session
@@ -104,7 +105,7 @@ class WardDeeds(Doer):
         from app.operations import handover
 
         self._path = path
-        self.model.ask(handover.prepare, self._request(), done=self._print, subject="handover sheet")
+        self.model.ask(handover.prepare, self.handover_request(), done=self._print, subject="handover sheet")
 
     def _print(self, outcome: Outcome[handover.Handover]) -> None:
         from app.sheet.content import sheet_content

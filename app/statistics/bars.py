@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QWidget
 
 from app.chart.marks import draw_card, fitted, pennant, solid_pen, verdict_sign
 from app.finding_names import marker_name
-from app.formats import minutes
+from app.formats import minutes, span
 from app.phrases import translate
 from app.statistics.measures import clock_name, measures, ordered_flags
 from app.theme import Theme, Tier, Verdict, verdict_of, verdict_word
@@ -192,3 +192,28 @@ class StatisticsBars(QWidget):
         painter.setPen(QColor(c.ink_quiet))
         told = f"{waits.known}" if not waits.not_known else f"{waits.known} + {waits.not_known}?"
         painter.drawText(QRectF(end + px(8), box.top(), px(56), box.height() * 0.9), _LEFT, told)
+
+
+@dataclass(frozen=True, slots=True)
+class StatisticsPicture:
+    """Paints the figures by themselves, under their span. Needs a QApplication."""
+
+    found: WardStatistics
+    reader: Reader
+    theme: Theme
+
+    def paint_on(self, painter: QPainter, width: int, height: int) -> None:
+        """Paint at the painter's origin on a surface of this size."""
+        px, theme = self.theme.px, self.theme
+        painter.setPen(QColor(theme.colours.ink))
+        painter.setFont(theme.font(theme.type.emphasis, bold=True))
+        told = translate("statistics", "Shift figures of the ward, {span}").format(
+            span=span(self.found.start, self.found.end, self.reader.zone))  # fmt: skip
+        painter.drawText(QRectF(px(16), px(10), width, px(26)), _LEFT, told)
+        bars = StatisticsBars(theme)
+        bars.show_figures(self.found, self.reader)
+        painter.save()
+        painter.translate(px(16), px(46))
+        bars.paint_on(painter, width - px(32), height - px(46))
+        painter.restore()
+        bars.deleteLater()

@@ -1,0 +1,152 @@
+"""The end of a shift: closing a handover, opening closed ones again, the paper form, the shift pattern."""
+
+from __future__ import annotations
+
+import tempfile
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QUrl
+from PySide6.QtGui import QDesktopServices
+from PySide6.QtWidgets import QInputDialog
+
+from app.deeds.writing import WritingDeeds
+from app.failure import Failure
+from app.operations.outcome import Outcome
+from app.words import sentence
+
+if TYPE_CHECKING:
+    from app.dialogs.close_handover import CloseHandoverDialog
+    from app.operations.handover import Handover
+    from storage.documents import DocumentFacts
+
+
+class ClosingDeeds(WritingDeeds):
+    """Closes handovers and shows closed ones; the menu Review builds on it."""
+
+    _dialog: CloseHandoverDialog | None = None
+    _names = ("", "", "A4")
+    _copy_to: Path | None = None
+    _opened_folder: tempfile.TemporaryDirectory[str] | None = None
+
+    def do_close_handover(self) -> None:
+        """Ask who gives and who takes; keep the sheet as it is printed now."""
+        from app.dialogs.close_handover import CloseHandoverDialog
+        from app.formats import span
+
+        shift, session = self.window.shift(), self.model.session
+        told = span(shift.start, min(shift.end, session.moment()), session.zone)
+        self._dialog = CloseHandoverDialog(told, session.person, self.close_handover, self.window.theme, self.window)
+        self._dialog.open()
+
+    def close_handover(self, given_by: str, taken_by: str, paper: str) -> None:
+        """Gather the shift, print it, keep the print."""
+        from app.operations import handover
+
+        self._names = given_by, taken_by, paper
+        self.model.ask(handover.prepare, self.window.doers.ward.handover_request(), done=self._gathered_to_close,
+                       failed=self._not_closed)  # fmt: skip
+
+    def _gathered_to_close(self, outcome: Outcome[Handover]) -> None:
+        from app.operations import handover
+        from app.sheet.content import sheet_content
+        from app.sheet.printing import pdf_bytes
+
+        given_by, taken_by, paper = self._names
+        content = sheet_content(outcome.value, self.window.plain_reader, given_by=given_by, taken_by=taken_by)
+        data, _ = pdf_bytes(content, paper)
+        name = handover.closed_name(content.ward.shift, given_by, taken_by)
+        request = handover.ClosedHandover(name, data)
+        self.model.ask(handover.close, request, done=self._closed, failed=self._not_closed)
+
+    def _closed(self, outcome: Outcome[str]) -> None:  # noqa: ARG002
+        if self._dialog is not None:
+            self._dialog.accept()
+            self._dialog.deleteLater()
+            self._dialog = None
+        self.window.say(self.tr("The handover is closed. Ctrl+Shift+O lists and opens closed ones."))
+
+    def _not_closed(self, failure: Failure) -> None:
+        told = sentence(failure.message, self.window.reader)
+        if self._dialog is not None:
+            self._dialog.refuse(told)
+        self.window.say(told)
+
+    # closed ones
+
+    def do_closed_handovers(self) -> None:
+        """List the closed handovers."""
+        from app.operations import handover
+
+        self.model.ask(handover.closed_list, None, done=self._listed, subject="closed handovers")
+
+    def _listed(self, outcome: Outcome[tuple[DocumentFacts, ...]]) -> None:
+        from app.dialogs.closed_handovers import ClosedHandoversDialog
+
+        dialog = ClosedHandoversDialog(outcome.value, self.model.session.zone, self.window.theme, self.window)
+        dialog.open_wanted.connect(self.open_closed)
+        dialog.copy_wanted.connect(self.copy_closed)
+        dialog.open()
+
+    def open_closed(self, facts: DocumentFacts) -> None:
+        """Open a closed handover in the computer's reader of PDFs, from a folder that goes with the window."""
+        if self._opened_folder is None:
+            self._opened_folder = tempfile.TemporaryDirectory(prefix="luffmark-handover-")
+        self.fetch_closed(facts.id, Path(self._opened_folder.name) / f"handover-{facts.seq}.pdf")
+
+    def copy_closed(self, facts: DocumentFacts) -> None:
+        """Ask where, write a closed handover's bytes."""
+        path = self.ask_path(self.tr("Save a copy"), f"handover-{facts.seq}.pdf", self.tr("PDF (*.pdf)"))
+        if path is not None:
+            self.fetch_closed(facts.id, path)
+
+    def fetch_closed(self, document: str, path: Path) -> None:
+        """Write a closed handover's bytes, unchanged."""
+        from app.operations import handover
+
+        self._copy_to = path
+        self.model.ask(handover.closed, document, done=self._fetched)
+
+    def _fetched(self, outcome: Outcome[bytes]) -> None:
+        path = self._copy_to
+        if path is None:
+            return
+        self.write(path, outcome.value)
+        if self._opened_folder is not None and path.parent == Path(self._opened_folder.name):
+            QDesktopServices.openUrl(QUrl.fromLocalFile(str(path)))
+
+    def forget_opened(self) -> None:
+        """Throw the opened copies away: they hold a ward's patients."""
+        if self._opened_folder is not None:
+            self._opened_folder.cleanup()
+            self._opened_folder = None
+
+    # paper and pattern
+
+    def do_blank_form(self) -> None:
+        """Ask where, write the paper form."""
+        from app.sheet.blank import blank_bytes
+
+        path = self.ask_path(self.tr("Blank paper form"), "handover-form.pdf", self.tr("PDF (*.pdf)"))
+        if path is not None:
+            self.write(path, blank_bytes()[0])
+
+    def do_shift_times(self) -> None:
+        """Ask at which times of day shifts begin."""
+        now = " ".join(self.window.preferences.shift_starts)
+        asked = self.tr("Times of day at which shifts begin, e.g. 07:30 19:30")
+        text, given = QInputDialog.getText(self.window, self.tr("Shift times"), asked, text=now)
+        if given:
+            self.set_shift_times(text)
+
+    def set_shift_times(self, text: str) -> None:
+        """Begin shifts at other times of day, or say what is wrong with them."""
+        from app.shift import read_starts
+
+        starts = read_starts(text)
+        if starts is None:
+            told = self.tr("'{text}' is no shift pattern. Accepted: one to six times of day, e.g. 07:30 19:30.")
+            self.window.say(told.format(text=text))
+            return
+        self.window.prefer(shift_starts=starts)
+        self.window.say(self.tr("Shifts begin at {times}.").format(times=", ".join(starts)))

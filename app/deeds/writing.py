@@ -1,0 +1,109 @@
+"""Files for others: pictures, exports, and how a file is written and told of."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from PySide6.QtWidgets import QFileDialog
+
+from app.deeds.doer import Doer
+from app.failure import failure_of
+from app.operations.outcome import Outcome
+
+if TYPE_CHECKING:
+    from app.dialogs.export import Wanted
+    from storage.export.deidentified import Statement
+
+
+class WritingDeeds(Doer):
+    """Writes files; the menu Review builds on it."""
+
+    _export_path = Path()
+
+    def ask_path(self, title: str, name: str, kinds: str) -> Path | None:
+        """Where a file is to go; None where the person left it."""
+        chosen, _ = QFileDialog.getSaveFileName(self.window, title, str(Path.home() / name), kinds)
+        return Path(chosen) if chosen else None
+
+    def write(self, path: Path, data: bytes) -> None:
+        """Write a file whole, and say so or say why not."""
+        from app.whole_file import write_whole
+
+        self.attempt(path, lambda: write_whole(path, data))
+
+    def attempt(self, path: Path, work: Callable[[], object]) -> None:
+        """Do something that writes `path`, and say so or say why not."""
+        try:
+            work()
+        except OSError as error:
+            self.window.show_failure(failure_of(error))
+            return
+        self.window.say(self.tr("{path} was written.").format(path=path))
+
+    # pictures
+
+    def save_picture(self) -> None:
+        """Ask where, draw what the page shows as PNG, SVG or PDF."""
+        from app.picture import picture_of_page
+        from app.theme import LIGHT
+
+        if picture_of_page(self.pages, LIGHT) is None:
+            self.window.say(self.tr("This page is text: save it as a PDF with Ctrl+P."))
+            return
+        kinds = self.tr("PDF (*.pdf);;SVG (*.svg);;PNG (*.png)")
+        path = self.ask_path(self.tr("Save picture"), f"{self.pages.name}.pdf", kinds)
+        if path is not None:
+            self.write_picture(path)
+
+    def write_picture(self, path: Path) -> None:
+        """Draw what the page shows into a file, and say so or say why not."""
+        from app.picture import SUFFIXES, picture_of_page, write_picture
+        from app.theme import LIGHT
+
+        found = picture_of_page(self.pages, LIGHT)
+        if path.suffix.lower() not in SUFFIXES:
+            path = path.with_name(path.name + ".pdf")
+        if found is not None:
+            self.attempt(path, lambda: write_picture(found, LIGHT, path))
+
+    # values
+
+    def do_export_values(self) -> None:
+        """Ask what, ask where, write it."""
+        from app.dialogs.export import ExportDialog
+
+        answers = self.window.feed.answers if self.window.feed is not None else {}
+        labels = {key: f"{a.figures.label} ({key})" for key, a in answers.items()}
+        ExportDialog(labels, self.export_wanted, self.window.theme, self.window).open()
+
+    def export_wanted(self, wanted: Wanted) -> None:
+        """Ask where, write what was chosen."""
+        name = "values-deidentified.csv" if wanted.deidentified else "values.csv"
+        path = self.ask_path(self.tr("Export values"), name, self.tr("CSV (*.csv)"))
+        if path is not None:
+            self.export(wanted, path)
+
+    def export(self, wanted: Wanted, path: Path) -> None:
+        """Write what was chosen; an existing file is never overwritten."""
+        from app.operations import export
+
+        shift = self.window.shift() if wanted.shift_only else None
+        request = export.ExportRequest(
+            path, wanted.episodes, self.model.session.as_known_at, wanted.channels,
+            shift.start if shift else None, shift.end if shift else None, wanted.dictionary,
+        )  # fmt: skip
+        self._export_path = path
+        if wanted.deidentified:
+            self.model.ask(export.write_deidentified, request, done=self._deidentified)
+        else:
+            self.model.ask(export.write, request, done=self._exported)
+
+    def _exported(self, outcome: Outcome[int]) -> None:
+        told = self.tr("{path} was written: {count} rows.")
+        self.window.say(told.format(path=self._export_path, count=outcome.value))
+
+    def _deidentified(self, outcome: Outcome[Statement]) -> None:
+        told = self.tr("{path} was written: {count} rows. What was left out and what remains stands beside it.")
+        self.window.say(told.format(path=self._export_path, count=outcome.value.rows))

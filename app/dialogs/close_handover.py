@@ -1,0 +1,44 @@
+"""Closing a handover: who gives, who takes. What is kept is what was printed, for good."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
+
+from app.chooser import Chooser
+from app.dialogs.asking import AskingDialog
+from app.sheet.printing import PAPERS
+from app.theme import Theme
+
+
+class CloseHandoverDialog(AskingDialog):
+    """Asks for giver, taker and paper and hands them to `close`."""
+
+    def __init__(
+        self, shift: str, person: str, close: Callable[[str, str, str], None], theme: Theme,
+        parent: QWidget | None = None,
+    ) -> None:  # fmt: skip
+        super().__init__(self.tr("Close handover"), self.tr("Close for good"), theme, parent)
+        self._close = close
+        about = QLabel(self.tr("{shift}. The sheet is kept in the ledger as it is printed now and is never altered. "
+                               "Later entries and corrections do not change it.").format(shift=shift))  # fmt: skip
+        about.setWordWrap(True)
+        self.add_body(about)
+        self.given, self.taken, self.paper = QLineEdit(person), QLineEdit(), Chooser()
+        for name in PAPERS:
+            self.paper.addItem(name, name)
+        self.field(self.tr("Given by"), self.given)
+        self.field(self.tr("Taken by"), self.taken)
+        self.field(self.tr("Paper"), self.paper)
+        self.taken.setFocus()
+        self.resize(theme.px(520), theme.px(320))
+
+    def submit(self) -> None:
+        """Hand on what was asked, when both names are there."""
+        given, taken = self.given.text().strip(), self.taken.text().strip()
+        if not given or not taken:
+            self.refuse(self.tr("Both names are needed: who gives the handover and who takes it."))
+            return
+        self.go.setEnabled(False)
+        self._close(given, taken, str(self.paper.currentData()))

@@ -1,0 +1,242 @@
+"""Looking back, the map, shift figures, exports and closing, by keys and through a real store."""
+
+import csv
+
+import pytest
+from pypdf import PdfReader
+from PySide6.QtCore import Qt
+from PySide6.QtGui import QKeySequence
+from PySide6.QtWidgets import QApplication, QDialog
+
+from app import demo
+from app.chart.shapes import MapGas
+from app.deeds.closing import ClosingDeeds
+from app.dialogs.close_handover import CloseHandoverDialog
+from app.dialogs.closed_handovers import ClosedHandoversDialog
+from app.dialogs.export import ExportDialog, Wanted
+from app.operations import figures, statistics
+from app.statistics.measures import CSV_HEADER, measures
+from core.figures.json_form import to_json
+from core.record.instant import MINUTE, parse
+from storage.store import Store
+from tests.support.open_window import open_window, settled, until
+
+Key, Mod = Qt.Key, Qt.KeyboardModifier
+THEN = parse("2026-03-28T02:40:00Z")
+
+
+@pytest.fixture(scope="module")
+def night(tmp_path_factory):
+    return demo.make_demo_store(tmp_path_factory.mktemp("night"))
+
+
+@pytest.fixture
+def window(qtbot, night, tmp_path):
+    with Store.open(night) as store:
+        store.backup(tmp_path / "copy")
+    Store.restore(tmp_path / "copy", tmp_path / "own.luffmark")
+    with open_window(qtbot, tmp_path / "own.luffmark") as made:
+        yield made
+
+
+def press(qtbot, window, keys):
+    action = next(a for a in window.actions_by_key.values() if QKeySequence(keys) in a.shortcuts())
+    assert action.isEnabled()
+    action.trigger()
+    settled(qtbot, window)
+
+
+def look_back(qtbot, window):
+    window.known.typed.setText("02:40")
+    qtbot.keyClick(window.known.typed, Key.Key_Return)
+    until(qtbot, lambda: window.model.session.as_known_at == THEN)
+    settled(qtbot, window)
+
+
+def test_every_figure_is_as_the_store_knew_it_then(qtbot, window):
+    look_back(qtbot, window)
+    shown = {k: to_json(a.figures) for k, a in window.feed.answers.items()}
+    with Store.open(window.model.session.store_path, read_only=True) as store:
+        asked = figures.of_ward(store, "", THEN, figures.WardRequest(THEN, THEN)).value  # what the command line asks
+    assert shown == {f.episode: to_json(f) for f in asked.figures}
+    entries = [s.entry for a in window.feed.answers.values() for s in a.record.standing]
+    assert all(e.recorded_at <= THEN for e in entries)
+    assert "As known at 28-Mar-2026 02:40" in window.known.said.text()
+    assert window.known.isVisible()
+    assert "02:40" in window.top.moment.text()
+
+
+def test_nothing_can_be_logged_into_the_past_and_why_is_said(qtbot, window):
+    look_back(qtbot, window)
+    strip = window.strip
+    assert not strip.line.isEnabled()
+    assert not any(b.isEnabled() for b in strip.buttons.values())
+    assert "nothing can be logged" in strip.plain()
+    for key in ("gas_sent", "mask", "checked", "told", "new_episode", "correct", "undo", "take_in", "close_handover"):
+        assert not window.actions_by_key[key].isEnabled(), key
+    strip.gas_sent()
+    assert strip.line.text() == ""
+    press(qtbot, window, "Alt+Home")
+    assert window.model.session.is_live
+    assert not window.known.isVisible()
+    assert strip.line.isEnabled()
+    assert window.actions_by_key["gas_sent"].isEnabled()
+
+
+def test_steps_by_a_quarter_of_an_hour_and_by_recording(qtbot, window):
+    look_back(qtbot, window)
+    press(qtbot, window, "Alt+Left")
+    assert window.model.session.as_known_at == THEN - 15 * MINUTE
+    press(qtbot, window, "Alt+Right")
+    assert window.model.session.as_known_at == THEN
+    press(qtbot, window, "Alt+Shift+Right")
+    after = window.model.session.as_known_at
+    assert after > THEN
+    press(qtbot, window, "Alt+Shift+Left")
+    assert window.model.session.as_known_at < after
+    window.doers.review.step(24 * 60)
+    assert window.model.session.is_live
+
+
+def test_a_time_that_is_none_is_refused_in_words(qtbot, window):
+    look_back(qtbot, window)
+    window.known.typed.setText("7 pm")
+    qtbot.keyClick(window.known.typed, Key.Key_Return)
+    assert "no time of day" in window.known.note.text()
+    assert window.model.session.as_known_at == THEN
+
+
+def test_what_came_later_is_counted_and_listed(qtbot, window):
+    look_back(qtbot, window)
+    until(qtbot, lambda: "Came later: " in window.known.later.text() and window.known.later.isEnabled())
+    press(qtbot, window, "Ctrl+Shift+L")
+    dialog = QApplication.activeModalWidget()
+    count = int(window.known.later.text().split()[-1])
+    assert dialog.table.rowCount() == count > 0
+    assert "recorded later" in dialog.text.toPlainText()
+    dialog.reject()
+
+
+def test_the_handover_follows_the_moment(qtbot, window):
+    press(qtbot, window, "Ctrl+4")
+    until(qtbot, lambda: "05:30" in window.pages.handover.plain())
+    look_back(qtbot, window)
+    until(qtbot, lambda: "as known at 28-Mar-2026 02:40" in window.pages.handover.plain())
+
+
+def test_the_map_tells_class_and_reasoning_by_keys(qtbot, window):
+    press(qtbot, window, "Ctrl+6")
+    page = window.pages.map
+    assert page.map.hasFocus()
+    last = page.map.chosen
+    assert isinstance(last, MapGas)
+    qtbot.keyClick(page.map, Key.Key_Left)
+    assert page.map.chosen.number == last.number - 1
+    assert "expected when acute" in page.told.text() or "acidosis" in page.told.text()
+    assert "Bicarbonate" in page.told.text()
+    table = page.as_table()
+    assert len(table.rows) == page.table.rowCount() == len(page.map.spec.gases)
+    assert str(last.number) in table.text
+    assert page.map.spec.paco2_word == "PaCO2 (mmHg)"
+    press(qtbot, window, "Ctrl+Shift+U")
+    assert page.map.spec.paco2_word == "PaCO2 (kPa)"
+    assert page.map.spec.gases[-1].paco2 < 20
+    qtbot.keyClick(page, Key.Key_Escape)
+    assert window.pages.name == "ward"
+
+
+def test_shift_figures_are_those_of_the_operation_and_can_be_saved(qtbot, window, tmp_path):
+    press(qtbot, window, "Ctrl+5")
+    page = window.pages.statistics
+    until(qtbot, lambda: page.found is not None)
+    with Store.open(window.model.session.store_path, read_only=True) as store:
+        shift = window.shift()
+        request = statistics.StatisticsRequest(shift.start, shift.end)
+        assert statistics.of_ward(store, "", demo.demo_now(), request).value == page.found
+    found = measures(page.found, window.plain_reader)
+    groups = {m.group for m in found}
+    assert page.table.rowCount() == len(found) + len(groups)
+    window.doers.review.ask_path = lambda *_: tmp_path / "figures.csv"
+    press(qtbot, window, "Ctrl+Shift+F")
+    with (tmp_path / "figures.csv").open(encoding="utf-8", newline="") as file:
+        rows = list(csv.reader(file))
+    assert tuple(rows[0]) == CSV_HEADER
+    assert len(rows) == len(found) + 1
+    page.spans.button("day").click()
+    until(qtbot, lambda: page.found.end - page.found.start == 24 * 60 * MINUTE)
+
+
+def test_a_handover_is_closed_and_opened_again_as_it_was(qtbot, window, tmp_path):
+    press(qtbot, window, "Ctrl+Shift+H")
+    dialog = window.findChild(CloseHandoverDialog)
+    dialog.submit()
+    assert "Both names" in dialog.wrong.text()
+    dialog.given.setText("AB")
+    dialog.taken.setText("CD")
+    dialog.submit()
+    until(qtbot, lambda: "is closed" in window.strip.plain())
+    press(qtbot, window, "Ctrl+Shift+O")
+    until(qtbot, lambda: window.findChild(ClosedHandoversDialog) is not None)
+    listed = window.findChild(ClosedHandoversDialog)
+    facts = listed.chosen()
+    assert facts.name.endswith("AB to CD")
+    deeds: ClosingDeeds = window.doers.review
+    deeds.fetch_closed(facts.id, tmp_path / "again.pdf")
+    until(qtbot, lambda: (tmp_path / "again.pdf").exists())
+    settled(qtbot, window)
+    assert (tmp_path / "again.pdf").stat().st_size == facts.size
+    assert "CD" in PdfReader(tmp_path / "again.pdf").pages[0].extract_text()
+    listed.reject()
+
+
+def test_values_are_exported_and_never_over_a_file(qtbot, window, tmp_path):
+    press(qtbot, window, "Ctrl+Shift+E")
+    dialog = window.findChild(ExportDialog)
+    assert isinstance(dialog, QDialog)
+    assert dialog.episodes.count() == len(window.feed.answers)
+    dialog.reject()
+    wanted = Wanted((window.model.session.selection,), ("ph",), True, False, True)
+    window.doers.review.export(wanted, tmp_path / "v.csv")
+    until(qtbot, lambda: "was written" in window.strip.plain())
+    rows = (tmp_path / "v.csv").read_text("utf-8").splitlines()
+    assert len(rows) > 1
+    assert all(",ph," in row for row in rows[1:])
+    assert (tmp_path / "v.dictionary.csv").exists()
+    window.doers.review.export(wanted, tmp_path / "v.csv")
+    until(qtbot, lambda: "exists already" in window.strip.plain())
+    window.doers.review.export(Wanted((), (), False, True, False), tmp_path / "d.csv")
+    until(qtbot, lambda: "what remains" in window.strip.plain())
+    assert "De-identified is not anonymous" in (tmp_path / "d.about.txt").read_text("utf-8")
+
+
+@pytest.mark.parametrize("page", ["ward", "episode", "map", "compare", "statistics"])
+@pytest.mark.parametrize("suffix", [".png", ".svg", ".pdf"])
+def test_each_page_is_drawn_as_a_picture(qtbot, window, tmp_path, page, suffix):
+    window.show_page(page)
+    settled(qtbot, window)
+    path = tmp_path / f"{page}{suffix}"
+    window.doers.review.write_picture(path)
+    assert "was written" in window.strip.plain()
+    data = path.read_bytes()
+    assert len(data) > 2000
+    if suffix == ".svg":
+        assert b"<image" not in data
+    if suffix == ".pdf":
+        (only,) = PdfReader(path).pages
+        assert not only.images
+
+
+def test_a_picture_that_cannot_be_written_says_why(qtbot, window, tmp_path):
+    window.doers.review.write_picture(tmp_path / "nowhere" / "x.pdf")
+    assert "was written" not in window.strip.plain()
+    assert "nowhere" in window.strip.plain()
+
+
+def test_the_shift_pattern_is_the_wards_own(qtbot, window):
+    deeds = window.doers.review
+    deeds.set_shift_times("7:00, 14:30 21:15")
+    assert window.preferences.shift_starts == ("07:00", "14:30", "21:15")
+    assert (window.shift().end - window.shift().start) / MINUTE == 9 * 60 + 45
+    deeds.set_shift_times("seven")
+    assert "no shift pattern" in window.strip.plain()
+    assert window.preferences.shift_starts == ("07:00", "14:30", "21:15")
