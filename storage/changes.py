@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import sqlalchemy as sa
@@ -10,6 +10,9 @@ import sqlalchemy as sa
 from storage import schema as s
 from storage.chain import last_batch
 from storage.settings_kept import layout_revision
+
+_AT_ONCE = 500
+"""Names in one question: databases bound how many they take."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,11 +40,16 @@ def changes_between(connection: sa.Connection, seq: int) -> Changes:
         return Changes(head, frozenset(), {}, layout_revision=revision)
     e, c = s.entry.c, s.chunk.c
     channels: dict[str, set[str]] = {}
-    for here, away, channel in connection.execute(
-        sa.select(e.episode_id, e.moved_from, e.channel).where(e.seq > seq)
+    replaced: set[str] = set()
+    for here, away, channel, target in connection.execute(
+        sa.select(e.episode_id, e.moved_from, e.channel, e.replaces).where(e.seq > seq)
     ):
         for episode in (here, away) if away else (here,):
             channels.setdefault(episode, set()).add(channel)
+        if target:
+            replaced.add(target)
+    for episode, channel in _branches(connection, replaced):
+        channels.setdefault(episode, set()).add(channel)
     for episode, channel in connection.execute(sa.select(c.episode_id, c.channel).where(c.seq > seq)):
         channels.setdefault(episode, set()).add(channel)
     return Changes(
@@ -53,6 +61,21 @@ def changes_between(connection: sa.Connection, seq: int) -> Changes:
         _any_after(connection, s.erasure, seq),
         revision,
     )
+
+
+def _branches(connection: sa.Connection, replaced: set[str]) -> Iterator[tuple[str, str]]:
+    """Where else an entry's replacements stand: of two, the later wins, so a new one can void a value elsewhere."""
+    e = s.entry.c
+    seen: set[str] = set()
+    while replaced:
+        some = sorted(replaced)[:_AT_ONCE]
+        replaced.difference_update(some)
+        seen.update(some)
+        rows = connection.execute(sa.select(e.id, e.episode_id, e.channel).where(e.replaces.in_(some)))
+        for entry_id, episode, channel in rows:
+            yield episode, channel
+            if entry_id not in seen:
+                replaced.add(entry_id)
 
 
 def _any_after(connection: sa.Connection, table: sa.Table, seq: int) -> bool:
