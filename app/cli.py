@@ -89,6 +89,17 @@ def _showing(command: Command) -> None:
     statistics.add_argument("--as-known-at", type=moment, metavar="T", help="only what was recorded by then")
 
 
+    replay = command("replay", "what a policy would have flagged in past episodes, or two policies side by side")
+    replay.add_argument("--policy", type=Path, metavar="FILE", help="the policy; left out: the one in force")
+    replay.add_argument("--against", type=Path, metavar="FILE", help="a second one; 'shipped' names the shipped policy")
+    replay.add_argument("--episodes", nargs="+", metavar="E", help="only these; left out: all of the store")
+    replay.add_argument("--from", dest="start", type=moment, metavar="T", help="only flags raised from then on")
+    replay.add_argument("--to", dest="end", type=moment, metavar="T", help="only flags raised, and things known, before")
+    replay.add_argument("--known-when-it-happened", dest="at_once", action="store_true",
+                        help="for records whose recording times are lost: as if each was recorded at once")  # fmt: skip
+    replay.add_argument("--processes", type=int, metavar="N", help="how many processes (default: one for each core)")
+
+
 def _recording(command: Command) -> None:
     intake = command("intake", "take files into the store, each whole or not at all: log CSV, tables, HL7 v2, FHIR")
     intake.add_argument("files", nargs="+", type=Path, metavar="FILE")
@@ -154,10 +165,11 @@ def _printing(command: Command) -> None:
     handovers = command("handovers", "the closed handovers; with an id, one of them as it was printed")
     handovers.add_argument("id", nargs="?", help="a closed handover's id")
     handovers.add_argument("--out", type=Path, metavar="FILE", help="where its PDF goes")
-    picture = command("picture", "an episode's panels as a picture")
-    picture.add_argument("episode")
+    picture = command("picture", "an episode's panels or acid-base map, or a comparison, as a picture")
+    picture.add_argument("episode", nargs="+", help="one; two to eight for a comparison")
+    picture.add_argument("--what", choices=("panels", "map", "compare"), default="panels")
     picture.add_argument("--out", type=Path, required=True, metavar="FILE", help=".png, .svg or .pdf")
-    picture.add_argument("--size", type=size, default=(1280, 800), metavar="WxH", help="in pixels (1280x800)")
+    picture.add_argument("--size", type=size, metavar="WxH", help="in pixels of 1/96 inch (1280x800)")
     picture.add_argument("--theme", choices=("light", "dark"), default="light")
     _moments(picture)
     screens = command("screens", "a PNG of each screen of the window, of the sample shift unless --store is given")
@@ -188,7 +200,7 @@ def _keeping(command: Command) -> None:
     mapping.add_argument("subject", nargs="?", help="a file (propose, put) or a name (show, forget)")
     mapping.add_argument("--name", default="", help="the name to keep it by")
     policy = command("policy", "show the policy in force, or check or put in force a policy file")
-    policy.add_argument("what", choices=("show", "check", "put"))
+    policy.add_argument("what", choices=("show", "check", "put", "history"))
     policy.add_argument("file", nargs="?", type=Path)
 
 
