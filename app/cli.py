@@ -91,12 +91,12 @@ def _showing(command: Command) -> None:
 
     replay = command("replay", "what a policy would have flagged in past episodes, or two policies side by side")
     replay.add_argument("--policy", type=Path, metavar="FILE", help="the policy; left out: the one in force")
-    replay.add_argument("--against", type=Path, metavar="FILE", help="a second one; 'shipped' names the shipped policy")
+    replay.add_argument("--against", type=Path, metavar="FILE", help="a second one; 'shipped' is the shipped one")
     replay.add_argument("--episodes", nargs="+", metavar="E", help="only these; left out: all of the store")
     replay.add_argument("--from", dest="start", type=moment, metavar="T", help="only flags raised from then on")
-    replay.add_argument("--to", dest="end", type=moment, metavar="T", help="only flags raised, and things known, before")
+    replay.add_argument("--to", dest="end", type=moment, metavar="T", help="only what was raised and known before")
     replay.add_argument("--known-when-it-happened", dest="at_once", action="store_true",
-                        help="for records whose recording times are lost: as if each was recorded at once")  # fmt: skip
+                        help="for records whose recording times are lost")  # fmt: skip
     replay.add_argument("--processes", type=int, metavar="N", help="how many processes (default: one for each core)")
 
 

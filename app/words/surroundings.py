@@ -40,6 +40,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
         "Update the program.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
+    "replay.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
+    "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
+        "Replay fewer episodes, or a shorter span.",
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "store.backup_failed": "The backup {path} could not be written: {detail}.",
     "store.busy": "{path} is busy: another program is writing ({detail}). Try again in a moment.",
