@@ -36,6 +36,7 @@ def make_demo_store(folder: Path) -> Path:
         StoreError: the folder cannot hold a store, or a sample file is not what it was.
     """
     import sample_data
+    from app.operations import policy
 
     path, now = folder / STORE_NAME, demo_now()
     with Store.create(path, now=now - 12 * HOUR, by=BY, imported=True) as store:
@@ -45,6 +46,7 @@ def make_demo_store(folder: Path) -> Path:
                 recorded.setdefault(min(at, now), []).append(batch)
         ordered = [(batch, at) for at in sorted(recorded) for batch in recorded[at]]
         store.append_drafts([batch for batch, _ in ordered], [at for _, at in ordered])
+        policy.begin(store, BY, now, None)
     return path
 
 

@@ -22,6 +22,7 @@ from app.operations.outcome import Outcome
 from app.runner import Operation, Runner
 from core.judgement.policy import Policy, shipped_policy
 from core.record.instant import Instant
+from core.record.message import Message
 
 POLL_MS = 2_000
 """How often another process's commits are looked for."""
@@ -75,6 +76,8 @@ class Session:
     is_demo: bool = False
     read_only: bool = False
     layout_revision: int = 0
+    notices: tuple[Message, ...] = ()
+    """What a person should know of the store: why it is read-only, a policy that cannot be read."""
 
     def now(self) -> Instant:
         """The moment entries are recorded at: the real clock, or the pretended one."""
@@ -192,7 +195,8 @@ class SessionModel(QObject):
     def _described(self, outcome: Outcome[store_operations.StoreFacts]) -> None:
         facts = outcome.value
         self._session = replace(self._session, head=outcome.head, policy=facts.policy,
-                                read_only=facts.read_only, layout_revision=facts.layout_revision)  # fmt: skip
+                                read_only=facts.read_only, layout_revision=facts.layout_revision,
+                                notices=facts.notices)  # fmt: skip
         self.changed.emit(Changed(frozenset({What.STORE, What.POLICY, What.RECORD}), facts.episodes))
 
     def _found(self, outcome: Outcome[store_operations.Changes]) -> None:
@@ -206,5 +210,6 @@ class SessionModel(QObject):
             return
         self._session = replace(known, head=max(outcome.head, known.head),
                                 policy=found.policy or known.policy,
+                                notices=known.notices if found.policy is None else found.notices,
                                 layout_revision=found.layout_revision)  # fmt: skip
         self.changed.emit(Changed(frozenset(what), found.episodes))

@@ -55,6 +55,29 @@ def data(connection: sa.Connection, document_id: str) -> bytes:
     return bytes(row[0])
 
 
+@dataclass(frozen=True, slots=True)
+class KeptPolicy:
+    """A policy that was put in force: its text, the hash it was kept under, by whom and when."""
+
+    hash: str
+    text: str
+    by: str
+    recorded_at: Instant
+    seq: int
+
+
+def policies(connection: sa.Connection, head: int) -> tuple[KeptPolicy, ...]:
+    """Every policy that was put in force up to a sequence, the newest first."""
+    p, b = s.policy.c, s.batch.c
+    query = (
+        sa.select(p.hash, p.text, b.by, b.recorded_at, p.seq)
+        .join_from(s.policy, s.batch, p.batch_seq == b.seq)
+        .where(p.seq <= head)
+        .order_by(p.seq.desc())
+    )
+    return tuple(KeptPolicy(str(r[0]), str(r[1]), str(r[2]), int(r[3]), int(r[4])) for r in connection.execute(query))
+
+
 def policy(connection: sa.Connection, head: int) -> tuple[str, str] | None:
     """The (hash, text) of the newest policy up to a sequence."""
     p = s.policy.c

@@ -57,6 +57,11 @@ class StoreKept:
         with self._opened.database.read() as connection:
             return documents.policy(connection, _ALL if head is None else head)
 
+    def policies(self, head: int | None = None) -> tuple[documents.KeptPolicy, ...]:
+        """Every policy that was put in force up to a sequence, the newest first."""
+        with self._opened.database.read() as connection:
+            return documents.policies(connection, _ALL if head is None else head)
+
     def put_policy(self, text: str, hash: str, by: str, now: Instant) -> Receipt:
         """Put a policy in force."""
         draft = DraftBatch(by, "policy", policies=(DraftPolicy(hash, text),))

@@ -17,6 +17,7 @@ from core.record.instant import Instant
 
 if TYPE_CHECKING:
     from app.words import Reader
+    from core.record.message import Message
     from storage.store import Store
 
 STORE_NAME = "ward.luffmark"
@@ -82,8 +83,8 @@ class Context:
         from storage.store import Store
 
         store = Store.open(self.store_path, passphrase=self.passphrase(), read_only=read_only)
-        for notice in store.notices:
-            remark(sentence(notice))
+        for notice in (*store.notices, *_policies_passed_over(store)):
+            remark(sentence(notice, self.reader()))
         return store
 
     def open_or_create(self, *, imported: bool = False) -> Store:
@@ -96,9 +97,17 @@ class Context:
         store = Store.create(self.store_path, passphrase=self.passphrase(), now=self.now(), by=self.by,
                              imported=imported)  # fmt: skip
         remark(f"New store: {self.store_path}")
+        if not imported:  # recording times of files stand only in a store that holds nothing yet
+            self.copy_policy(store)
         if store.recovery_code:
             remark(f"Recovery code, shown once, keep it safe: {store.recovery_code}")
         return store
+
+    def copy_policy(self, store: Store) -> None:
+        """Give a store without a policy its copy of the shipped one."""
+        from app.operations import policy
+
+        policy.begin(store, self.by, self.now(), None)
 
     def answer(self, text: str, value: Any) -> None:
         """Print the answer: the text, or the value as JSON where JSON was asked for."""
@@ -107,6 +116,17 @@ class Context:
             sys.stdout.write("\n")
         else:
             print(plain(text))
+
+
+def _policies_passed_over(store: Store) -> tuple[Message, ...]:
+    """Newer policies of the store that cannot be read; a damaged store says so itself when it is used."""
+    from app.operations import policy
+    from storage.errors import StoreError
+
+    try:
+        return policy.found(store).passed_over
+    except StoreError:
+        return ()
 
 
 def default_store() -> Path:

@@ -39,6 +39,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
                     context.answer("", {"taken": taken, "refused": _refused_json(path, intake, reader)})
                 return 1
             taken.append(_take(context, store, path, intake, reader, leave_out=may_leave_out))
+        context.copy_policy(store)
     context.answer("\n".join(t.pop("text") for t in taken), {"taken": taken})
     return 0
 

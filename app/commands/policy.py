@@ -1,4 +1,4 @@
-"""`luffmark policy show | check FILE | put FILE`."""
+"""`luffmark policy show | check FILE | put FILE | history`."""
 
 from __future__ import annotations
 
@@ -7,22 +7,35 @@ import sys
 from pathlib import Path
 
 from app.commands.context import Context
+from app.policy_file import text_of
 from core.judgement.policy import Policy, read_policy, shipped_policy, shipped_text
+from core.record.instant import iso
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Show the policy in force, check a file, or put one in force."""
-    if args.what == "show":
-        return _show(context)
+    if args.what in ("show", "history"):
+        return _show(context) if args.what == "show" else _history(context)
     if args.file is None:
         print(f"luffmark: policy {args.what} needs a FILE", file=sys.stderr)
         return 2
-    text = _text_of(args.file)
+    text = text_of(args.file)
     if args.what == "check":
         return _check(context, args.file, text)
+    return _put(context, args.file, text)
+
+
+def _put(context: Context, path: Path, text: str) -> int:
+    """Put a policy in force, or say every fault and what stays in force."""
     from app.operations import policy as operations
+    from core.judgement.policy_check import check
 
     with context.open() as store:
+        if not check(text).usable:
+            stays = operations.in_force(store)
+            code = _check(context, path, text)
+            print(f"In force as before: {_named(stays)}", file=sys.stderr)
+            return code
         put = operations.put(store, context.by, context.now(), text).value
     context.answer(f"In force now: {_named(put)}", _facts(put))
     return 0
@@ -64,17 +77,26 @@ def _show(context: Context) -> int:
 
     with context.open(read_only=True) as store:
         found = operations.show(store, context.by, context.now(), None).value
-    context.answer(found.text, _facts(found.policy) | {"text": found.text, "shipped": found.is_shipped})
+    value = _facts(found.policy) | {"text": found.text, "shipped": found.is_shipped}
+    context.answer(found.text, value | {"passed_over": [dict(m.values) for m in found.passed_over]})
     return 0
 
 
-def _text_of(path: Path) -> str:
-    from core.record.message import refuse
+def _history(context: Context) -> int:
+    """Every policy that was put in force, the newest first."""
+    from app.formats import wall
+    from app.operations import policy as operations
 
-    try:
-        return path.read_text("utf-8")
-    except UnicodeDecodeError as error:
-        raise refuse("policy.unreadable", detail=f"not UTF-8 ({error.reason})") from None
+    with context.open(read_only=True) as store:
+        kept = operations.history(store, context.by, context.now(), None).value
+    zone = context.local_zone()
+    lines = [f"{wall(k.at, zone)}  {k.hash[:16]}  {k.name or 'cannot be read'}"
+             + (f", version {k.version}" if k.name else "") + (f"  by {k.by}" if k.by else "")
+             for k in kept]  # fmt: skip
+    value = [{"at": iso(k.at), "hash": k.hash, "name": k.name or None, "version": k.version if k.name else None,
+              "by": k.by} for k in kept]  # fmt: skip
+    context.answer("\n".join(lines) or "The store has no policy of its own: the shipped one is in force.", value)
+    return 0
 
 
 def _named(policy: Policy) -> str:

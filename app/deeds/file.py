@@ -197,7 +197,11 @@ def _open(path: Path, passphrase: str | None, _by: str) -> Store:
 
 
 def _create(path: Path, passphrase: str | None, by: str) -> Store:
-    return Store.create(path, passphrase=passphrase, now=REAL.now(), by=by)
+    from app.operations import policy
+
+    store = Store.create(path, passphrase=passphrase, now=REAL.now(), by=by)
+    policy.begin(store, by, REAL.now(), None)
+    return store
 
 
 def _make_sample(folder: Path) -> Store:

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
-from app.operations.policy import in_force
+from app.operations.policy import found as policy_found
 from core.judgement.policy import Policy
 from core.record.instant import Instant
 from core.record.message import Message
@@ -38,14 +38,17 @@ class Changes:
     episodes: frozenset[str]
     policy: Policy | None = None
     layout_revision: int = 0
+    notices: tuple[Message, ...] = ()
+    """What a person should know of the store, where the policy was replaced."""
 
 
 def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[StoreFacts]:
     """The store's episodes, its state, and the policy in force."""
     head = store.head()
+    in_force = policy_found(store)
     facts = StoreFacts(
-        frozenset(store.episode_keys()), in_force(store), store.read_only, store.is_encrypted,
-        tuple(store.notices), store.printed_head(), store.changes_since(head).layout_revision,
+        frozenset(store.episode_keys()), in_force.policy, store.read_only, store.is_encrypted,
+        (*store.notices, *in_force.passed_over), store.printed_head(), store.changes_since(head).layout_revision,
     )  # fmt: skip
     return Outcome(facts, head)
 
@@ -53,8 +56,11 @@ def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[Sto
 def changes(store: Store, who: str, now: Instant, request: int) -> Outcome[Changes]:
     """What was committed after the sequence `request`."""
     found = store.changes_since(request)
-    policy = in_force(store) if found.policy_changed else None
-    return Outcome(Changes(found.episodes, policy, found.layout_revision), found.head)
+    if not found.policy_changed:
+        return Outcome(Changes(found.episodes, None, found.layout_revision), found.head)
+    in_force = policy_found(store)
+    notices = (*store.notices, *in_force.passed_over)
+    return Outcome(Changes(found.episodes, in_force.policy, found.layout_revision, notices), found.head)
 
 
 def verify(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[Message, ...]]:

@@ -83,6 +83,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "policy.no_source": "{path} is empty: every number needs its source.",
     "policy.not_a_table": "{path} is '{value}' and no table.",
     "policy.out_of_range": "{path} = {value:trim} is not possible. Accepted: {low:trim} to {high:trim}.",
+    "policy.passed_over":
+        "The policy put in force at {at:time}[[ by {by}]] (SHA-256 {hash}) cannot be read: {detail}. "
+        "{name}, version {version:0}, stays in force.",
     "policy.unknown_key": "{path} is not known. Accepted: {accepted}.",
     "policy.wrong_order": "{first} ({low:trim}) must lie below {second} ({high:trim}).",
     "policy.wrong_value": "{path} = {value} is not possible ({detail}). Accepted: {accepted}.",

@@ -12,7 +12,7 @@ from hypothesis import strategies as st
 from app.operations import as_known, figures
 from app.operations.figures import WardRequest
 from core.figures.json_form import to_json
-from core.judgement.policy import shipped_policy, shipped_text
+from core.judgement.policy import policy_hash, shipped_policy, shipped_text
 from core.record.entries import Action, NewEntry
 from core.record.hindsight import Later
 from core.record.instant import MINUTE, Instant
@@ -76,7 +76,7 @@ def test_a_policy_and_device_samples_of_later_are_not_known(folder: Path) -> Non
     text = shipped_text().replace('name = "', 'name = "another ')
     stores[0].append((), by="AB", operation="intake", now=at + 1,
                      samples=[DeviceSamples("E1", "rr_total", "device", t, np.full(50, 33.0))])  # fmt: skip
-    stores[0].put_policy(text, "0" * 64, "AB", at + 2)
+    stores[0].put_policy(text, policy_hash(text), "AB", at + 2)
     with stores[0] as whole, stores[1] as early:
         assert ward(whole, at, at) == ward(early, at, None)
         assert ward(whole, at, at)[0]["policy"] == shipped_policy().hash
