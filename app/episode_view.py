@@ -18,8 +18,8 @@ from app.readers import reader_at
 from app.theme import Theme
 from app.ward.lane_words import indication_word
 from app.words import Reader
-from core.judgement.shapes import ResponseFigure
-from core.record.instant import Instant
+from core.judgement.shapes import GasFigure, ResponseFigure
+from core.record.instant import MINUTE, Instant
 
 
 class EpisodeView(QWidget):
@@ -176,6 +176,15 @@ class EpisodeView(QWidget):
             if not start <= later[0] <= end:
                 self.stack.go_to(later[0])
             self.stack.point_at(later[0])
+
+    def gas_pointed_at(self) -> GasFigure | None:
+        """The gas under the crosshair, or so near that a hand cannot tell."""
+        at = self.stack.instant
+        if self._on is None or at is None or not self._on.figures.gases:
+            return None
+        start, end = self.stack.window
+        near = min(self._on.figures.gases, key=lambda g: abs(g.at - at))
+        return near if abs(near.at - at) <= max(2 * MINUTE, (end - start) // 100) else None
 
     # what the person does
 

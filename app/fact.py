@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QFocusEvent, QKeyEvent, QMouseEvent
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QSizePolicy, QVBoxLayout, QWidget
+from PySide6.QtCore import QEvent, Qt, Signal
+from PySide6.QtGui import QEnterEvent, QFocusEvent, QKeyEvent, QMouseEvent, QResizeEvent
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
 
 from app.explain import Explanation
 from app.signs import Sign
@@ -14,7 +14,11 @@ from app.theme import Theme
 
 
 class Fact(QFrame):
-    """One fact. Enter or Space unfolds what stands under it; F2, ? or a double click explains it."""
+    """One fact. Enter or Space unfolds what stands under it; F2, ?, a double click or "Why" explains it.
+
+    `value` stands at the right of the title, or below it where it is a sentence; `marks` are doubts, told as
+    strongly as the value.
+    """
 
     explain_wanted = Signal(object)
 
@@ -30,13 +34,16 @@ class Fact(QFrame):
         fold_word: str = "",
         quiet: bool = False,
         payload: object = None,
+        value: str = "",
+        value_below: bool = False,
+        marks: Sequence[str] = (),
     ) -> None:
         super().__init__()
         self.explanation, self.payload = explanation, payload
         self._fold_word = fold_word
         self.setProperty("fact", True)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
-        self.setAccessibleName(". ".join((title, *lines)))
+        self.setAccessibleName(". ".join((title, *((value,) if value else ()), *marks, *lines)))
         row = QHBoxLayout(self)
         row.setContentsMargins(theme.px(8), theme.px(5), theme.px(8), theme.px(5))
         row.setSpacing(theme.px(8))
@@ -44,7 +51,12 @@ class Fact(QFrame):
             row.addWidget(sign, 0, Qt.AlignmentFlag.AlignTop)
         words = QVBoxLayout()
         words.setSpacing(theme.px(1))
-        words.addWidget(_label(title, "quiet" if quiet else "strong"))
+        self._title = _label(title, "quiet" if quiet else "strong")
+        words.addLayout(_head(theme, self._title, "" if value_below else value))
+        if value and value_below:
+            words.addWidget(_label(value, "strong"))
+        for mark in marks:
+            words.addWidget(_label(mark, "mark"))
         for line in lines:
             words.addWidget(_label(line, "caption"))
         self._fold_label = _label(fold_word, "caption") if folded else None
@@ -55,6 +67,32 @@ class Fact(QFrame):
             label.hide()
             words.addWidget(label)
         row.addLayout(words, 1)
+        self.why = self._why_button(title) if explanation is not None else None
+
+    def _why_button(self, title: str) -> QToolButton:
+        """A small way in for the mouse; it floats over the corner, so that nothing moves when it comes."""
+        button = QToolButton(self)
+        button.setText(self.tr("Why"))
+        button.setProperty("role", "why")
+        button.setToolTip(self.tr("How this came about (F2)"))
+        button.setAccessibleName(self.tr("How this came about: {title}").format(title=title))
+        button.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        button.clicked.connect(self._want_explanation)
+        button.hide()
+        return button
+
+    def _want_explanation(self) -> None:
+        if self.explanation is not None:
+            self.explain_wanted.emit(self.explanation)
+
+    @property
+    def key(self) -> str:
+        """What it is by, when the column is drawn anew."""
+        return self.accessibleName().partition(".")[0]
+
+    def set_title(self, text: str) -> None:
+        """Another title."""
+        self._title.setText(text)
 
     @property
     def is_unfolded(self) -> bool:
@@ -92,6 +130,28 @@ class Fact(QFrame):
             self.explain_wanted.emit(self.explanation)
         event.accept()
 
+    def enterEvent(self, event: QEnterEvent) -> None:
+        super().enterEvent(event)
+        if self.why is not None:
+            self._place_why()
+            self.why.show()
+
+    def leaveEvent(self, event: QEvent) -> None:
+        super().leaveEvent(event)
+        if self.why is not None:
+            self.why.hide()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        if self.why is not None:
+            self._place_why()
+
+    def _place_why(self) -> None:
+        assert self.why is not None
+        self.why.adjustSize()
+        self.why.move(self.width() - self.why.width() - 4, self.height() - self.why.height() - 3)
+        self.why.raise_()
+
     def focusInEvent(self, event: QFocusEvent) -> None:
         super().focusInEvent(event)
         _bring_into_view(self)
@@ -108,14 +168,33 @@ def _bring_into_view(widget: QWidget) -> None:
         parent = parent.parentWidget()
 
 
+def _head(theme: Theme, title: QLabel, value: str) -> QHBoxLayout:
+    """The title, and at its right the value, which is never broken."""
+    row = QHBoxLayout()
+    row.setSpacing(theme.px(10))
+    row.addWidget(title, 1)
+    if value:
+        label = QLabel(value)
+        label.setTextFormat(Qt.TextFormat.PlainText)
+        label.setProperty("role", "strong")
+        label.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        row.addWidget(label, 0, Qt.AlignmentFlag.AlignTop)
+    return row
+
+
 def _label(text: str, role: str) -> QLabel:
-    label = QLabel(text)
+    label = QLabel(_unbroken(text))
     label.setTextFormat(Qt.TextFormat.PlainText)
     label.setWordWrap(True)
     label.setProperty("role", role)
     label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.MinimumExpanding)
     label.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
     return label
+
+
+def _unbroken(text: str) -> str:
+    """No line ends inside a unit: 30 L/min stays whole."""
+    return text.replace("/min", "/\N{WORD JOINER}min").replace(" L/", "\N{NO-BREAK SPACE}L/\N{WORD JOINER}")
 
 
 def heading(text: str) -> QLabel:

@@ -14,6 +14,8 @@ from PySide6.QtGui import QCursor
 from PySide6.QtWidgets import QApplication, QDialog, QWidget
 
 from app.clock import REAL, still
+from app.episode.figure_list import FoldHead
+from app.episode_view import EpisodeView
 from app.preferences import Preferences
 from app.runner import Runner
 from app.session import Session, SessionModel
@@ -112,6 +114,7 @@ def _screens(
     pages.episode.stack.point_at(start + (end - start) * 2 // 3)
     _pass_events()
     yield "episode-crosshair", window
+    yield from _figures(window, pages.episode)
     for name in ("map", "compare", "handover", "statistics"):
         window.show_page(name)
         _settle(window)
@@ -121,6 +124,47 @@ def _screens(
     window.doers.review.step(-BACK_MIN)
     _settle(window)
     yield "as-known", window
+
+
+def _figures(window: MainWindow, episode: EpisodeView) -> Iterator[tuple[str, QWidget]]:
+    """The list of figures, folded and unfolded; explanations of a figure, of one without a value, of a score."""
+    side = episode.side
+    inside = side.widget()
+    if side.figures is None or inside is None:
+        return
+    side.ensureWidgetVisible(side.figures)
+    _pass_events()
+    yield "figures-folded", window
+    for name in ("gas", "oxygenation", "breathing"):
+        fold = next(f for f in side.figures.folds if f.head.key == f"figures.{name}")
+        side.figures.set_unfolded(False)
+        fold.head.unfold()
+        for inner in fold.findChildren(FoldHead)[1:]:
+            inner.unfold()
+        _pass_events()
+        side.verticalScrollBar().setValue(fold.mapTo(inside, QPoint(0, 0)).y() - 40)
+        _pass_events()
+        yield f"figures-{name}", window
+    for name, key in (("doubt", "ventilatory_ratio"), ("none", "aa_gradient_expected"), ("class", "gas_class")):
+        side.figures.set_unfolded(False)
+        side.figures.set_unfolded(True)
+        fact = next((f for f in side.facts() if getattr(f.payload, "key", "") == key), None)
+        if fact is not None and fact.explanation is not None:
+            window.doers.view.explain(fact.explanation)
+            _pass_events()
+            yield f"explain-{name}", _dialog(window)
+            _pass_events()
+    side.figures.set_unfolded(False)
+    score = next((f for f in side.facts() if f.explanation is not None and f.explanation.population), None)
+    if score is not None and score.explanation is not None:
+        window.doers.view.explain(score.explanation)
+        _pass_events()
+        yield "explain-score", _dialog(window)
+    _pass_events()
+
+
+def _dialog(window: MainWindow) -> QWidget:
+    return QApplication.activeModalWidget() or next(w for w in window.findChildren(QDialog) if w.isVisible())
 
 
 def _strip(window: MainWindow) -> Iterator[tuple[str, QWidget]]:

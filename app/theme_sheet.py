@@ -32,6 +32,7 @@ QFrame[fact="true"]:hover {{ background: {wash}; }}
 QFrame[fact="true"]:focus {{ border-color: {accent}; background: {wash}; }}
 QLabel[role="quiet"] {{ color: {ink_quiet}; }}
 QLabel[role="caption"] {{ color: {ink_quiet}; font-size: {caption}px; }}
+QLabel[role="mark"] {{ font-size: {caption}px; font-weight: 600; }}
 
 QPushButton, QToolButton {{
     background: {raised}; border: 1px solid {edge}; border-radius: {radius}px;
@@ -54,6 +55,9 @@ QToolButton[role="tab"] {{
 QToolButton[role="tab"]:hover {{ background: {wash}; }}
 QToolButton[role="tab"]:checked {{ background: {wash}; border-color: {accent}; font-weight: 600; }}
 QToolButton[role="tab"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {tab_1}px; }}
+QToolButton[role="why"] {{
+    padding: {g1}px {g2}px; min-height: 0px; font-size: {caption}px; border-color: {edge};
+}}
 QPushButton[role="small"] {{ padding: {g1}px {g3}px; min-height: {choice}px; }}
 QPushButton[role="small"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
 QToolButton[role="choice"] {{

@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING
 from PySide6.QtWidgets import QApplication
 
 from app.deeds.doer import Doer
-from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, ResponseFigure
+from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, LeverFigure, ResponseFigure
 
 if TYPE_CHECKING:
     from app.explain import Explanation
+    from app.fact import Fact
 
 
 class ViewDeeds(Doer):
@@ -18,9 +19,17 @@ class ViewDeeds(Doer):
 
     def do_explain(self) -> None:
         """Explain what has the focus; without one, the strongest thing that the page shows."""
-        found = self._of_focus() or self._of_page()
+        fact = self._focused_fact()
+        found = fact.explanation if fact is not None else self._of_page()
         if found is not None:
             self.explain(found)
+        elif fact is not None:
+            self.window.say(self.tr("This line says all there is to it."))
+
+    def do_show_figures(self) -> None:
+        """Every computed figure of the selected episode, unfolded; folded again where it is."""
+        self.window.show_page("episode")
+        self.pages.episode.side.toggle_figures()
 
     def explain(self, explanation: Explanation) -> None:
         """Show an explanation."""
@@ -34,18 +43,19 @@ class ViewDeeds(Doer):
         if found is not None:
             self.explain(found)
 
-    def _of_focus(self) -> Explanation | None:
+    def _focused_fact(self) -> Fact | None:
         from app.fact import Fact
 
         widget = QApplication.focusWidget()
-        while widget is not None:
-            if isinstance(widget, Fact):
-                return widget.explanation
+        while widget is not None and not isinstance(widget, Fact):
             widget = widget.parentWidget()
-        return None
+        return widget
 
     def _of_page(self) -> Explanation | None:
         if self.pages.name == "episode":
+            pointed = self.pages.episode.gas_pointed_at()
+            if pointed is not None:
+                return self.of_payload(pointed)
             return next(
                 (f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None
             )
@@ -68,13 +78,17 @@ class ViewDeeds(Doer):
         """The explanation of a figure."""
         from app.explain import Explainer
 
-        explainer = Explainer(self.model.session.policy, self.window.reader)
+        feed = self.window.feed
+        policy = feed.policy if feed is not None else self.model.session.policy
+        explainer = Explainer(policy, self.window.reader)
         if isinstance(payload, FlagFigure):
             return explainer.flag(payload)
         if isinstance(payload, ResponseFigure):
             return explainer.response(payload)
         if isinstance(payload, GasFigure):
             return explainer.gas(payload)
+        if isinstance(payload, LeverFigure):
+            return explainer.lever(payload)
         return explainer.due(payload) if isinstance(payload, DueFigure) else None
 
     def do_table(self) -> None:

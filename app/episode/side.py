@@ -3,14 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from dataclasses import replace
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
 
+from app.episode.figure_list import FigureList
 from app.explain import Explainer, Explanation, sure_words
+from app.explain_figures import CLASSES, explain_row, score_in, score_value
 from app.fact import Fact, heading
+from app.figure_groups import figure_groups
+from app.figure_leak import mask_rows
+from app.figure_rows import RowMaker
+from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
-from app.formats import clock, fixed, gas_pressure, hours, minutes, since, trimmed
+from app.formats import clock, hours, minutes, since, trimmed
 from app.phrases import gas_words, state_of, support_now, translate
 from app.signs import Sign
 from app.theme import Theme, Tier, state_word, tier_word, verdict_of, verdict_word
@@ -21,7 +28,12 @@ from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures, FlagFigure, ResponseFigure, ScoreFigure
 from core.record.instant import MINUTE
 
-SCORE_NAMES = {"hacor": "HACOR", "hacor_updated": "HACOR 2022", "news2": "NEWS2", "rox": "ROX"}
+SCORE_NAMES = {
+    "hacor": "HACOR", "hacor_updated": "HACOR 2022", "news2": "NEWS2", "rox": "ROX",
+    "copd_failure": "COPD failure chart",
+}  # fmt: skip
+LONG_VALUE = 20
+"""Letters: a longer value stands under its name."""
 
 
 MOST_WIDTH = 430
@@ -36,6 +48,7 @@ class SideColumn(QScrollArea):
     def __init__(self, theme: Theme) -> None:
         super().__init__()
         self._theme = theme
+        self.figures: FigureList | None = None
         self.setWidgetResizable(True)
         self.setFrameShape(QFrame.Shape.NoFrame)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
@@ -53,11 +66,21 @@ class SideColumn(QScrollArea):
         inside = self.widget()
         return inside.findChildren(Fact) if inside is not None else []
 
+    def toggle_figures(self) -> None:
+        """Unfold every group of figures and go to the first; fold them all where one is unfolded."""
+        if self.figures is None or not self.figures.folds:
+            return
+        self.figures.set_unfolded(not self.figures.is_unfolded)
+        self.figures.folds[0].head.setFocus()
+        if self.figures.is_unfolded:
+            self.ensureWidgetVisible(self.figures.folds[-1].head)
+            self.ensureWidgetVisible(self.figures.folds[0].head, 0, self.viewport().height() // 2)
+
     def show_figures(self, figures: EpisodeFigures, policy: Policy, reader: Reader) -> None:
         """Draw the figures anew, keeping the place that was scrolled to."""
         place, old = self.verticalScrollBar().value(), self.facts()
         focused = next((n for n, fact in enumerate(old) if fact.hasFocus()), None)
-        unfolded = {fact.accessibleName().partition(".")[0] for fact in old if fact.is_unfolded}
+        unfolded = {fact.key for fact in old if fact.is_unfolded}
         maker = _Facts(self._theme, figures, Explainer(policy, reader), reader)
         inside = QWidget()
         column = QVBoxLayout(inside)
@@ -77,6 +100,9 @@ class SideColumn(QScrollArea):
                 fact.explain_wanted.connect(self.explain_wanted)
                 rows.addWidget(fact)
             column.addWidget(card)
+        self.figures = FigureList(self._theme, figure_groups(figures, reader), reader, figures.as_of)
+        self.figures.explain_wanted.connect(self.explain_wanted)
+        column.addWidget(self.figures)
         column.addStretch(1)
         self.setWidget(inside)
         self._as_before(focused, unfolded)
@@ -84,10 +110,12 @@ class SideColumn(QScrollArea):
 
     def _as_before(self, focused: int | None, unfolded: set[str]) -> None:
         """News must not take the focus away, nor fold what was opened."""
-        facts = self.facts()
-        for fact in facts:
-            if fact.accessibleName().partition(".")[0] in unfolded:
+        left = set(unfolded)
+        while news := [fact for fact in self.facts() if fact.key in left and not fact.is_unfolded]:
+            for fact in news:  # what was unfolded may hold folds of its own
                 fact.unfold()
+                left.discard(fact.key)
+        facts = self.facts()
         if focused is not None and facts:
             facts[min(focused, len(facts) - 1)].setFocus()
 
@@ -111,7 +139,7 @@ class _Facts:
             yield translate("side", "What could act"), levers
         scores = tuple(self._scores())
         if scores:
-            yield translate("side", "Scores and ratios"), scores
+            yield translate("side", "Scores"), scores
 
     def _quiet(self, text: str) -> Fact:
         return Fact(self.theme, text, quiet=True)
@@ -136,7 +164,12 @@ class _Facts:
         response = self._telling()
         if response is not None:
             yield self._verdict(response)
-        yield Fact(self.theme, self._support(), tuple(self._mask_time()))
+        yield Fact(self.theme, self._support(), tuple(self._mask_time()), explanation=self._hours())
+
+    def _hours(self) -> Explanation:
+        """How the hours on the mask were counted."""
+        row = next(mask_rows(self.f, RowMaker(self.reader, {})))
+        return explain_row(row, self.reader, self.f.as_of)
 
     def _telling(self) -> ResponseFigure | None:
         told = [r for r in self.f.responses if r.headline_gas_at is not None]
@@ -215,10 +248,17 @@ class _Facts:
                 [x for x in lines if x],
                 sign=Sign(self.theme, Tier(flag.tier), quiet=flag.state == "seen"),
                 payload=flag,
-                explanation=self.explainer.flag(flag),
+                explanation=self._with_others(self.explainer.flag(flag), under),
                 folded=folded,
                 fold_word=word,
             )
+
+    def _with_others(self, explanation: Explanation, under: Sequence[FlagFigure]) -> Explanation:
+        """The strongest flag of a kind explains those that stand under it too."""
+        others = (
+            f"{marker_name(g.marker, self.reader)}. {self._evidence(g)} {self._source(g)}" for g in under
+        )
+        return replace(explanation, notes=(*explanation.notes, *others))
 
     def _evidence(self, flag: FlagFigure) -> str:
         return " ".join(sentence(e, self.reader) for e in flag.evidence)
@@ -268,6 +308,7 @@ class _Facts:
                 folded=folded,
                 fold_word=word,
                 quiet=True,
+                explanation=self.explainer.levers_without_effect(idle),
             )
 
     # scores
@@ -275,41 +316,22 @@ class _Facts:
     def _scores(self) -> Iterator[Fact]:
         for key, score in self.f.scores.items():
             if score.enabled:
-                name = SCORE_NAMES.get(key, key)
+                full = score_in(self.f, key)
+                value = score_value(key, full, self.reader)
+                is_class = key in CLASSES
                 yield Fact(
                     self.theme,
-                    f"{name}: {self._points(score)}",
+                    translate("side", SCORE_NAMES.get(key, key)),
                     tuple(self._score_lines(score)),
-                    explanation=self.explainer.score(name, score),
+                    explanation=self.explainer.score(key, full, self.f.as_of),
                     quiet=True,
+                    value=value,
+                    value_below=is_class or len(value) > LONG_VALUE,
                 )
-        for name, ratio, decimals in (("P/F", self.f.pf, 0), ("S/F", self.f.sf, 0), ("ROX", self.f.rox, 1)):
-            if ratio.latest is not None and ratio.at is not None:
-                value = (
-                    gas_pressure(ratio.latest, self.reader.gas_unit)
-                    if name == "P/F"
-                    else fixed(ratio.latest, decimals)
-                )
-                yield Fact(
-                    self.theme,
-                    f"{name}: {value}",
-                    (f"{clock(ratio.at, self.reader.zone)}, {since(ratio.at, self.f.as_of)}",),
-                    explanation=Explanation(name),
-                    quiet=True,
-                )
-
-    def _points(self, score: ScoreFigure) -> str:
-        if score.points is not None:
-            return trimmed(score.points)
-        if score.lowest is not None and score.highest is not None:
-            return translate("side", "between {low} and {high}").format(
-                low=trimmed(score.lowest), high=trimmed(score.highest)
-            )
-        return translate("side", "not known")
 
     def _score_lines(self, score: ScoreFigure) -> Iterator[str]:
         if score.missing:
-            names = ", ".join(m.replace("_", " ") for m in score.missing)
+            names = ", ".join(input_name(m, self.reader) for m in score.missing)
             yield translate("side", "missing: {names}").format(names=names)
         if score.population == "outside":
             yield translate("side", "outside its population")
