@@ -60,7 +60,7 @@ def _table(inputs: tuple[tuple[str, str, str], ...], theme: Theme) -> str:
     quiet, cell = theme.colours.ink_quiet, "padding-right:20px; padding-bottom:3px"
     rows = "".join(
         f'<tr><td style="color:{quiet}; {cell}">{escape(name)}</td>'
-        f'<td style="{cell}">{escape(value)}</td><td style="color:{quiet}">{escape(when)}</td></tr>'
+        f'<td style="{cell}">{escape(value)}</td><td style="color:{quiet}">{escape(when) or "&nbsp;"}</td></tr>'
         for name, value, when in inputs
     )
     return f'<table cellspacing=0 style="margin-top:0">{rows}</table>'

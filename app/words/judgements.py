@@ -149,10 +149,12 @@ LEVERS: Final[dict[str, str]] = {
     "lever.upper_airway": "EPAP holds the upper airway open.",
 }  # fmt: skip
 
+_CLASSES = "no_axis_adverse=no axis adverse;between=between;worst_corner=worst corner"
+
 OTHER: Final[dict[str, str]] = {
     "copd_failure.risk":
-        "risk {lowest:pick else=#}{known:pick yes=;no= to }{highest}[[, published failure above "
-        "{published_above_percent:0} %]]",
+        "risk class: {lowest:pick " + _CLASSES + "}[[ to {up_to:pick " + _CLASSES + "}]]"
+        "[[, published failure above {published_above_percent:0} %]]",
     "score.is_a_class": "a class of risk, not points",
 }  # fmt: skip
 

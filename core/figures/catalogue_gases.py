@@ -128,7 +128,7 @@ COMPENSATION: Final = (
         "A heuristic: shown, never judged by; spoilt by diuretics and metabolic disturbance.",
     ),
     _line(
-        "gas_class", "The gas in plain words", "", "the rules above, tolerance 2 mmol/L and 2 mmHg",
+        "gas_class", "The gas in plain words", "", "rules of compensation, within 2 mmol/L and 2 mmHg",
         "compensation rules; the bands between are common practice", "common practice",
         "core.physiology.classification.classify", _OUTSIDE + "test_published_interpretation",
         "Describes; no marker is judged by it.",

@@ -105,6 +105,7 @@ def _class(risk: RiskClass) -> Message:
         {
             "lowest": risk.lowest.name.lower(),
             "highest": risk.highest.name.lower(),
+            "up_to": None if risk.highest == risk.lowest else risk.highest.name.lower(),
             "known": risk.risk is not None,
             "published_above_percent": risk.published_above_percent,
         },
