@@ -23,6 +23,8 @@ _INSTANTS = frozenset(
      "window_to", "baseline_at", "headline_gas_at", "superseded_at", "span_from", "seen_at", "settled_at",
      "due_from", "due_until", "done_at", "observed_at", "latest_at", "over_since", "adjusted_at"}
 )  # fmt: skip
+_MICROSECONDS = 10**14
+"""No count and no sequence is this large; an instant since 1973 is."""
 _INTERNAL = frozenset({"reasons", "concern", "ids"})
 
 
@@ -74,10 +76,15 @@ class _Form:
         return self.instant(int(value)) if is_moment else value  # type: ignore[arg-type]
 
     def message(self, message: Message) -> Json:
-        out: Json = {"key": message.key, "values": dict(message.values)}
+        out: Json = {"key": message.key, "values": {k: self.moment(k, v) for k, v in message.values.items()}}
         if self.word is not None:
             out["text"] = self.word(message)
         return out
+
+    def moment(self, name: str, value: Any) -> Any:
+        """A message's value; an instant, by its name and its size, as ISO 8601."""
+        named = name.endswith("_at") or name in ("at", "since", "until")
+        return self.instant(value) if named and isinstance(value, int) and value > _MICROSECONDS else value
 
     def plain(self, shape: Any) -> Json:
         """Every field by its name, with `NAME_reason` beside a null that has one."""
