@@ -12,6 +12,7 @@ from app.operations.outcome import Outcome
 from app.panels import PanelSet, family_of, from_json, shipped
 from app.session import Changed, SessionModel, What
 from app.ward_feed import WardFeed
+from core.record.hindsight import Hindsight
 from core.record.message import RecordError
 
 
@@ -27,6 +28,7 @@ class EpisodeFeed(QObject):
         super().__init__(parent)
         self._model, self._ward, self._gas_unit = model, ward, gas_unit
         self._kept: dict[str, PanelSet] = {}
+        self._later: Mapping[str, tuple[Hindsight, ...]] = {}
         model.changed.connect(self._model_changed)
         ward.refreshed.connect(self._ward_refreshed)
 
@@ -34,6 +36,12 @@ class EpisodeFeed(QObject):
         """Show gas pressures in another unit."""
         self._gas_unit = gas_unit
         self.show_selection()
+
+    def mark_later(self, found: Mapping[str, tuple[Hindsight, ...]]) -> None:
+        """Mark what came later than the moment that is looked at; {} where the window is live."""
+        if found or self._later:
+            self._later = found
+            self.show_selection()
 
     def family(self) -> str:
         """Which family of panels the selected episode uses."""
@@ -56,9 +64,11 @@ class EpisodeFeed(QObject):
                     record,
                     on_ward.figures,
                     on_ward.course,
-                    self._model.session.policy,
+                    self._ward.policy,
                     self.panels(),
                     self._gas_unit,
+                    self._model.session.is_live,
+                    self._later.get(key, ()),
                 )
             )
 

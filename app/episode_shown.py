@@ -9,6 +9,7 @@ from app.panels import PanelSet
 from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode
+from core.record.hindsight import Hindsight
 
 
 @dataclass(frozen=True, slots=True)
@@ -21,6 +22,10 @@ class EpisodeOnScreen:
     policy: Policy
     panels: PanelSet
     gas_unit: str
+    live: bool = True
+    """False where the past is looked at."""
+    later: tuple[Hindsight, ...] = ()
+    """What was recorded or changed only after the moment that is looked at."""
 
     @property
     def zone(self) -> str:

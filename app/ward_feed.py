@@ -13,6 +13,7 @@ from app.session import Changed, SessionModel, What
 from app.shift import shift_of
 from app.ward.lane_words import OnWard
 from app.ward_view import WardContent
+from core.judgement.policy import Policy
 
 _ALL_AGAIN = (What.STORE, What.POLICY, What.AS_OF, What.AS_KNOWN_AT, What.CLOCK, What.ZONE)
 
@@ -31,12 +32,18 @@ class WardFeed(QObject):
         self._wanted: set[str] = set()
         self._all_wanted = False
         self._answered_once = False
+        self._policy: Policy | None = None
         model.changed.connect(self.model_changed)
 
     @property
     def answers(self) -> dict[str, EpisodeAnswer]:
         """Records and figures by episode."""
         return self._answers
+
+    @property
+    def policy(self) -> Policy:
+        """The policy that the figures shown were judged by."""
+        return self._policy or self._model.session.policy
 
     @property
     def is_ready(self) -> bool:
@@ -71,6 +78,7 @@ class WardFeed(QObject):
 
     def _answer(self, outcome: Outcome[WardAnswer]) -> None:
         answer = outcome.value
+        self._policy = answer.policy
         if self._all_wanted:
             self._answers.clear()
         self._all_wanted = False
@@ -89,5 +97,5 @@ class WardFeed(QObject):
         as_of = session.moment()
         shift = shift_of(as_of, session.zone, self._preferences.shift_starts)
         return WardContent(
-            tuple(self._on_ward.values()), as_of, shift, session.zone, self._preferences.gas_unit
+            tuple(self._on_ward.values()), as_of, shift, session.zone, self._preferences.gas_unit, session.is_live
         )

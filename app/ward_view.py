@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
 from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import Qt, Signal
@@ -10,7 +11,7 @@ from PySide6.QtGui import QFontMetrics, QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QSizePolicy, QVBoxLayout, QWidget
 
 from app.chart.lanes import WardLanes
-from app.chart.shapes import LaneItem, LanesSpec
+from app.chart.shapes import Lane, LaneItem, LanesSpec
 from app.choice_row import ChoiceRow
 from app.flow_row import FlowRow
 from app.formats import clock
@@ -37,6 +38,8 @@ class WardContent:
     shift: Shift
     zone: str
     gas_unit: str = "mmHg"
+    live: bool = True
+    """False where the past is looked at: its line is no "now"."""
 
 
 class _Line(QLabel):
@@ -80,6 +83,7 @@ class WardView(QWidget):
         self._theme = theme
         self._content: WardContent | None = None
         self._by_key: dict[str, OnWard] = {}
+        self._later: dict[str, int] = {}
         self._order, self._shown = Order.CONCERN, Shown.ALL
         self.first = SeeFirst(theme)
         self.lanes = WardLanes(theme)
@@ -203,7 +207,7 @@ class WardView(QWidget):
         words = LaneWords(reader_at(content.zone, content.gas_unit, content.as_of), content.as_of)
         labels = [f.label for f in ward]
         lanes = [
-            words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1)
+            self._marked(words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1))
             for f in ordered(shown(ward, self._shown, self.search.text()), self._order)
         ]
         self._tell_first(words)
@@ -215,7 +219,7 @@ class WardView(QWidget):
                 content.shift.end,
                 tuple(lanes),
                 content.as_of if content.shift.start <= content.as_of <= content.shift.end else None,
-                self.tr("now"),
+                self.tr("now") if content.live else self.tr("then"),
                 self.tr("Bed"),
                 self.tr("State now, next due"),
                 self._empty_word(),
@@ -223,6 +227,20 @@ class WardView(QWidget):
             )
         )
         self.status.say(self.lanes.sentence_of_selection())
+
+    def mark_later(self, counts: Mapping[str, int]) -> None:
+        """Mark lanes whose record holds more now of this time than it did then; {} where the window is live."""
+        if counts != self._later:
+            self._later = dict(counts)
+            self._refresh()
+
+    def _marked(self, lane: Lane) -> Lane:
+        count = self._later.get(lane.key, 0)
+        if not count:
+            return lane
+        mark = self.tr("+{count} later").format(count=count)
+        told = self.tr("{count} values came later").format(count=count)
+        return replace(lane, subtitle=f"{mark}; {lane.subtitle}", sentence=f"{lane.sentence}. {told}")
 
     def _tell_first(self, words: LaneWords) -> None:
         assert self._content is not None

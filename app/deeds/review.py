@@ -95,13 +95,24 @@ class ReviewDeeds(ClosingDeeds):
         from app.operations import as_known
 
         at = self.model.session.as_known_at
-        if at is not None:
+        if at is None:
+            self._known = None
+            self._mark({})
+        else:
             self._known_at = at
             self.model.ask(as_known.came_later, as_known.LaterRequest(at), done=self._counted, subject="came later")
 
     def _counted(self, outcome: Outcome[CameLater]) -> None:
+        if self.model.session.as_known_at is None:
+            return
         self._known = outcome.value
+        self._mark(outcome.value)
         self.window.known.show_later(sum(len(told) for told in outcome.value.values()))
+
+    def _mark(self, found: CameLater) -> None:
+        self.pages.ward.mark_later({key: len(told) for key, told in found.items()})
+        if self.window.episode_feed is not None:
+            self.window.episode_feed.mark_later(found)
 
     def do_came_later(self) -> None:
         """List what came later than the moment that is looked at."""

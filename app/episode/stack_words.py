@@ -12,6 +12,7 @@ from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.episode_shown import EpisodeOnScreen
 from app.formats import clock
+from app.later_words import later_word
 from app.panels import Panel
 from app.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
 from app.theme import state_word, verdict_of, verdict_word
@@ -43,7 +44,7 @@ def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
         ribbon=_ribbon(on),
         events=tuple(_events(on)),
         now=now if start <= now <= end else None,
-        now_word=translate("stack", "now"),
+        now_word=translate("stack", "now") if on.live else translate("stack", "then"),
         window=(max(start, end - 24 * HOUR), end) if end - start > LONG else None,
         reduced_word=translate(
             "stack", "Lowest and highest value of each pixel are drawn. Zoom in for each value."
@@ -195,7 +196,16 @@ def _events(on: EpisodeOnScreen) -> Iterator[Tick]:
         for t, text in zip(words.t, words.v, strict=True):
             name = channel_name(channel.key)
             found.append(Tick(int(t), f"{name}: {text}" if text else name, payload=channel.key))
-    yield from sorted(found, key=lambda tick: tick.at)
+    yield from sorted((*found, *_came_later(on)), key=lambda tick: tick.at)
+
+
+def _came_later(on: EpisodeOnScreen) -> Iterator[Tick]:
+    """What the record holds now of this time and did not hold then, one doubtful tick for each moment."""
+    words: dict[Instant, list[str]] = {}
+    for h in on.later:
+        words.setdefault(h.entry.at, []).append(f"{channel_name(h.entry.channel)} {later_word(h.what)}")
+    for at, told in words.items():
+        yield Tick(at, "; ".join(told), doubtful=True)
 
 
 def summary_of(on: EpisodeOnScreen) -> str:

@@ -12,6 +12,7 @@ from app.operations.outcome import Outcome, report
 from app.operations.policy import in_force
 from core.figures.episode_figures import episode_figures
 from core.figures.stage_cache import StageCache
+from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
@@ -55,10 +56,12 @@ class EpisodeAnswer:
 
 @dataclass(frozen=True, slots=True)
 class WardAnswer:
-    """The episodes of a ward in order of concern, whom to see first foremost."""
+    """The episodes of a ward in order of concern, whom to see first foremost, and the policy they were judged by:
+    the one in force as known at the moment asked for."""
 
     as_of: Instant
     episodes: tuple[EpisodeAnswer, ...]
+    policy: Policy
 
     @property
     def figures(self) -> tuple[EpisodeFigures, ...]:
@@ -91,7 +94,7 @@ def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outco
             made = episode_figures(record, request.as_of, policy, stages)
             answers.append(EpisodeAnswer(record, made))
     answers.sort(key=lambda a: concern_order(a.figures))
-    return Outcome(WardAnswer(request.as_of, tuple(answers)), head)
+    return Outcome(WardAnswer(request.as_of, tuple(answers), policy), head)
 
 
 def concern_order(figures: EpisodeFigures) -> tuple[int, float, str]:
@@ -117,7 +120,7 @@ def _keys(store: Store, request: WardRequest) -> Sequence[str]:
 def _stands(record: Episode, request: WardRequest) -> bool:
     """Whether an episode had begun by the moment and had not ended long before it."""
     if request.episodes is not None:
-        return True
+        return bool(record.standing)  # an episode that nothing was known of yet does not stand on the ward
     if record.first_at is None or record.first_at > request.as_of:
         return False
     ended = record.latest("ended_at")

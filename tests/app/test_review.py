@@ -14,7 +14,8 @@ from app.deeds.closing import ClosingDeeds
 from app.dialogs.close_handover import CloseHandoverDialog
 from app.dialogs.closed_handovers import ClosedHandoversDialog
 from app.dialogs.export import ExportDialog, Wanted
-from app.operations import figures, statistics
+from app.operations import episode, figures, statistics
+from app.operations.episode import BeginRequest
 from app.statistics.measures import CSV_HEADER, measures
 from core.figures.json_form import to_json
 from core.record.instant import MINUTE, parse
@@ -115,6 +116,38 @@ def test_what_came_later_is_counted_and_listed(qtbot, window):
     assert dialog.table.rowCount() == count > 0
     assert "recorded later" in dialog.text.toPlainText()
     dialog.reject()
+
+
+def test_what_came_later_is_marked_in_lane_and_panels_and_no_line_is_called_now(qtbot, window):
+    look_back(qtbot, window)
+    until(qtbot, lambda: any("later" in lane.subtitle for lane in window.pages.ward.lanes.spec.lanes))
+    marked = next(lane for lane in window.pages.ward.lanes.spec.lanes if "later" in lane.subtitle)
+    assert "came later" in marked.sentence
+    assert window.pages.ward.lanes.spec.now_word == "then"
+    window.open_episode(marked.key)
+    settled(qtbot, window)
+    spec = window.pages.episode.stack.spec
+    ticks = [t for t in spec.events if "recorded later" in t.word]
+    assert ticks
+    assert all(t.doubtful and t.at <= THEN for t in ticks)
+    assert spec.now_word == "then"
+    press(qtbot, window, "Alt+Home")
+    until(qtbot, lambda: not any("later" in lane.subtitle for lane in window.pages.ward.lanes.spec.lanes))
+    until(qtbot, lambda: not any("later" in t.word for t in window.pages.episode.stack.spec.events))
+    assert window.pages.ward.lanes.spec.now_word == "now"
+
+
+def test_a_new_episode_of_another_hand_does_not_slip_into_the_past(qtbot, window):
+    look_back(qtbot, window)
+    before = set(window.feed.answers)
+    with Store.open(window.model.session.store_path) as other:
+        episode.begin(other, "ZZ", demo.demo_now(), BeginRequest("NEW-1", {"label": "Bed 99"}))
+    window.model.look_for_changes()
+    settled(qtbot, window)
+    settled(qtbot, window)
+    assert set(window.feed.answers) == before
+    press(qtbot, window, "Alt+Home")
+    assert "NEW-1" not in before
 
 
 def test_the_handover_follows_the_moment(qtbot, window):

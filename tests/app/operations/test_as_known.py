@@ -3,6 +3,7 @@
 from dataclasses import replace
 from itertools import count
 from pathlib import Path
+from uuid import UUID
 
 import numpy as np
 import pytest
@@ -18,6 +19,7 @@ from core.record.hindsight import Later
 from core.record.instant import MINUTE, Instant
 from core.record.message import RecordError
 from core.record.samples import DeviceSamples
+from storage.draft_batch import DraftBatch, DraftEntry
 from storage.store import Store
 from tests.support.recorded_night import BEGIN, KEYS, Deed, nights
 
@@ -34,17 +36,17 @@ def filled(folder: Path, deeds: list[Deed], until: Instant) -> tuple[Store, list
     store = Store.create(folder / f"{next(_names)}.luff", now=BEGIN)
     ids: list[str] = []
     taken = []
-    for deed in deeds:
+    for number, deed in enumerate(deeds):
         if deed.recorded_at > until:
             break
         target = "" if deed.target is None or deed.target >= len(ids) else ids[deed.target]
+        draft = DraftEntry(replace(deed.entry, replaces=target), str(UUID(int=number)))  # the same id in both stores
         try:
-            entry = replace(deed.entry, replaces=target)
-            receipt = store.append([entry], by="AB", operation="entry.log", now=deed.recorded_at)
+            store.append_drafts((DraftBatch("AB", "entry.log", (draft,)),), (deed.recorded_at,))
         except RecordError:
             ids.append("")
             continue
-        ids.append(receipt.ids[0])
+        ids.append(draft.id)
         taken.append(deed)
     return store, taken
 
