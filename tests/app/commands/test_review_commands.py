@@ -1,0 +1,133 @@
+"""Statistics, closed handovers, the paper form, exports and pictures from the command line."""
+
+import csv
+import io
+import json
+from pathlib import Path
+
+import pytest
+from pypdf import PdfReader
+
+from app import demo
+from app.cli import main
+from storage.store import Store
+
+SPAN = ("--from", "2026-03-27T19:30:00Z", "--to", "2026-03-28T05:30:00Z")
+KNOWN = "2026-03-28T02:40:00Z"
+
+
+@pytest.fixture(scope="module")
+def night(tmp_path_factory) -> Path:
+    return demo.make_demo_store(tmp_path_factory.mktemp("night"))
+
+
+@pytest.fixture
+def own(night: Path, tmp_path: Path) -> Path:
+    with Store.open(night) as store:
+        store.backup(tmp_path / "copy")
+    Store.restore(tmp_path / "copy", tmp_path / "own.luffmark")
+    return tmp_path / "own.luffmark"
+
+
+def run(capsys, *arguments: object) -> tuple[int, str, str]:
+    code = main([str(a) for a in arguments])
+    out, err = capsys.readouterr()
+    return code, out, err
+
+
+def test_statistics_say_the_same_as_text_json_and_csv(capsys, night, tmp_path):
+    code, text, _ = run(capsys, "statistics", *SPAN, "--store", night)
+    assert code == 0
+    assert "Support started: 11" in text
+    _, out, _ = run(capsys, "statistics", *SPAN, "--store", night, "--json")
+    value = json.loads(out)
+    assert (value["episodes"], value["starts"]) == (12, 11)
+    assert value["clocks"]["decision_to_start"]["within"] == 11
+    assert run(capsys, "statistics", *SPAN, "--store", night, "--csv", tmp_path / "s.csv")[0] == 0
+    rows = list(csv.DictReader(io.StringIO((tmp_path / "s.csv").read_text("utf-8"))))
+    counted = {r["measure"]: r["value"] for r in rows}
+    assert counted["Support started"] == "11"
+    assert float(counted["Hours on the mask"]) == pytest.approx(value["hours_on_mask"], rel=1e-4)
+    assert {r["from"] for r in rows} == {"2026-03-27T19:30:00+00:00"}
+
+
+def test_statistics_as_known_then_know_less_and_a_backward_span_is_refused(capsys, night):
+    _, now, _ = run(capsys, "statistics", *SPAN, "--store", night, "--json")
+    _, then, _ = run(capsys, "statistics", *SPAN, "--store", night, "--json", "--as-known-at", KNOWN)
+    assert json.loads(then)["gases"]["total"] < json.loads(now)["gases"]["total"]
+    code, _, err = run(capsys, "statistics", "--from", SPAN[3], "--to", SPAN[1], "--store", night)
+    assert code == 1
+    assert "before it starts" in err
+
+
+def test_a_handover_is_closed_listed_and_written_again_byte_for_byte(capsys, own, tmp_path):
+    code, out, _ = run(capsys, "handover", *SPAN, "--store", own, "--close", "--given-by", "AB", "--taken-by", "CD",
+                       "--out", tmp_path / "a.pdf", "--json")  # fmt: skip
+    assert code == 0
+    made = json.loads(out)
+    _, listed, _ = run(capsys, "handovers", "--store", own, "--json")
+    (only,) = json.loads(listed)["handovers"]
+    assert (only["id"], only["name"]) == (made["id"], made["name"])
+    assert run(capsys, "handovers", made["id"], "--store", own, "--out", tmp_path / "b.pdf")[0] == 0
+    assert (tmp_path / "a.pdf").read_bytes() == (tmp_path / "b.pdf").read_bytes()
+    assert run(capsys, "verify", "--store", own)[0] == 0
+
+
+def test_what_a_handover_lacks_is_said(capsys, own, tmp_path):
+    assert run(capsys, "handover", "--store", own)[0] == 2
+    assert run(capsys, "handover", *SPAN, "--store", own, "--close", "--given-by", "AB")[0] == 2
+    assert run(capsys, "handovers", "no-such-id", "--store", own, "--out", tmp_path / "x.pdf")[0] == 1
+    assert not (tmp_path / "x.pdf").exists()
+    assert run(capsys, "handovers", "--store", own)[1].strip() == "No handover was closed yet."
+
+
+def test_the_paper_form_needs_no_store(capsys, tmp_path):
+    assert run(capsys, "handover", "--blank", "--out", tmp_path / "form.pdf", "--paper", "Letter")[0] == 0
+    assert len(PdfReader(tmp_path / "form.pdf").pages) == 2
+    assert run(capsys, "handover", "--blank")[0] == 2
+    code, _, err = run(capsys, "handover", "--blank", "--out", tmp_path / "nowhere" / "form.pdf")
+    assert code == 1
+    assert "nowhere" in err
+
+
+def test_exports_keep_to_what_was_asked(capsys, night, tmp_path):
+    asked = ("--channel", "ph", *SPAN, "--dictionary")
+    code, _, _ = run(capsys, "export", "--store", night, "--out", tmp_path / "v.csv", *asked)
+    assert code == 0
+    rows = list(csv.DictReader(io.StringIO((tmp_path / "v.csv").read_text("utf-8"))))
+    assert {r["channel"] for r in rows} == {"ph"}
+    assert len((tmp_path / "v.dictionary.csv").read_text("utf-8").splitlines()) == 2
+    assert run(capsys, "export", "--store", night, "--out", tmp_path / "v.csv")[0] == 1
+
+
+def test_a_deidentified_export_holds_no_label_and_says_what_remains(capsys, night, tmp_path):
+    code, out, _ = run(capsys, "export", "--store", night, "--out", tmp_path / "d.csv", "--deidentified")
+    assert code == 0
+    assert "Remains (rows)" in out
+    text = (tmp_path / "d.csv").read_text("utf-8")
+    with Store.open(night, read_only=True) as store:
+        for key in store.episode_keys():
+            record = store.episode(key)
+            assert key not in text
+            for channel in ("label", "location", "plan", "contact", "note"):
+                assert not any(words and words in text for words in record.text(channel).v)
+    assert "2026-03-2" not in text
+    assert "anonymous" in (tmp_path / "d.about.txt").read_text("utf-8")
+
+
+@pytest.mark.parametrize(("what", "episodes"), [("panels", 1), ("map", 1), ("compare", 3)])
+def test_pictures_of_each_kind(capsys, night, tmp_path, what, episodes):
+    with Store.open(night, read_only=True) as store:
+        keys = store.episode_keys()[:episodes]
+    path = tmp_path / f"{what}.svg"
+    code, _, _ = run(capsys, "picture", *keys, "--what", what, "--store", night, "--as-of", SPAN[3], "--out", path)
+    assert code == 0
+    text = path.read_text("utf-8")
+    assert "<image" not in text
+    assert "pH" in text
+
+
+def test_a_picture_of_too_few_or_too_many_is_refused(capsys, night, tmp_path):
+    out = ("--out", tmp_path / "x.png", "--store", night)
+    assert run(capsys, "picture", "A", "B", "--what", "map", *out)[0] == 2
+    assert run(capsys, "picture", "A", "--what", "compare", *out)[0] == 2
