@@ -72,6 +72,29 @@ class ClosingDeeds(WritingDeeds):
             self._dialog.refuse(told)
         self.window.say(told)
 
+    # on paper
+
+    def do_print_handover(self) -> None:
+        """Show the sheet as it will be printed; the printer is chosen there."""
+        from app.operations import handover
+
+        self.window.say(self.tr("Gathering the shift..."))
+        self.model.ask(handover.prepare, self.window.doers.ward.handover_request(), done=self._preview,
+                       failed=self._not_closed, subject="handover preview")  # fmt: skip
+
+    def _preview(self, outcome: Outcome[Handover]) -> None:
+        from PySide6.QtPrintSupport import QPrinterInfo
+
+        from app.dialogs.print_preview import HandoverPreview
+        from app.sheet.content import sheet_content
+
+        person = self.model.session.person
+        content = sheet_content(outcome.value, self.window.plain_reader, given_by=person)
+        told = "" if QPrinterInfo.availablePrinterNames() else self.tr(
+            "No printer is set up on this computer. Ctrl+P saves the sheet as a PDF.")  # fmt: skip
+        self.window.say(told)
+        HandoverPreview(content, self.window).open()
+
     # closed ones
 
     def do_closed_handovers(self) -> None:

@@ -14,6 +14,7 @@ from app.deeds.closing import ClosingDeeds
 from app.dialogs.close_handover import CloseHandoverDialog
 from app.dialogs.closed_handovers import ClosedHandoversDialog
 from app.dialogs.export import ExportDialog, Wanted
+from app.dialogs.print_preview import HandoverPreview
 from app.operations import episode, figures, statistics
 from app.operations.episode import BeginRequest
 from app.statistics.measures import CSV_HEADER, measures
@@ -273,3 +274,12 @@ def test_the_shift_pattern_is_the_wards_own(qtbot, window):
     deeds.set_shift_times("seven")
     assert "no shift pattern" in window.strip.plain()
     assert window.preferences.shift_starts == ("07:00", "14:30", "21:15")
+
+
+def test_the_sheet_is_previewed_as_it_will_be_printed(qtbot, window):
+    press(qtbot, window, "Ctrl+Alt+P")
+    until(qtbot, lambda: window.findChild(HandoverPreview) is not None)
+    preview = window.findChild(HandoverPreview)
+    until(qtbot, lambda: preview.pages > 0)
+    assert preview.pages >= 1 + len(window.feed.answers)
+    preview.reject()
