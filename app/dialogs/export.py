@@ -83,6 +83,7 @@ class ExportDialog(AskingDialog):
 def _ticks(labels: Mapping[str, str], name: str) -> QListWidget:
     ticks = QListWidget()
     ticks.setAccessibleName(name)
+    ticks.setSpacing(3)
     for key, label in labels.items():
         item = QListWidgetItem(label)
         item.setData(_KEY, key)

@@ -22,6 +22,7 @@ class HandoverPreview(QPrintPreviewDialog):
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.setWindowTitle(f"{content.ward.title}, {content.ward.shift}")
         self.paintRequested.connect(self._paint)
+        self.resize(1000, 760)
 
     def _paint(self, printer: QPrinter) -> None:
         self.pages = paint(self._content, printer, printer.resolution())
