@@ -53,6 +53,8 @@ class Explanation:
     reason: str = ""
     formula: str = ""
     population: str = ""
+    may_be_copied: bool = True
+    """False for what is expected and never measured: no text to paste is made of it."""
 
     def as_text(self) -> str:
         """All of it in plain words, to be copied."""

@@ -26,6 +26,9 @@ class ExplainDialog(QDialog):
         self.copy = QPushButton(self.tr("&Copy"))
         buttons.addButton(self.copy, QDialogButtonBox.ButtonRole.ActionRole)
         self.copy.clicked.connect(self._copy)
+        self.copy.setVisible(explanation.may_be_copied)
+        if not explanation.may_be_copied:
+            self.text.setTextInteractionFlags(Qt.TextInteractionFlag.NoTextInteraction)
         buttons.rejected.connect(self.close)
         column = QVBoxLayout(self)
         column.addWidget(self.text)

@@ -17,6 +17,8 @@ from core.record.instant import Instant
 
 CLASSES = frozenset({"copd_failure"})
 """Scores whose inputs stand on axes: they give steps, not points."""
+SCREEN_ONLY = frozenset({"course", "expected_co2"})
+"""Interpolated and expected values stand on the screen, never in text that somebody pastes."""
 _IN_MMHG = "Pressures enter the formula in mmHg; 1 kPa is 7.5 mmHg."
 
 
@@ -36,6 +38,7 @@ def explain_row(row: FigureRow, reader: Reader, now: Instant) -> Explanation:
         doubt=whole(row.doubt),
         reason=whole(row.why),
         formula=reader.translate(entry.formula),
+        may_be_copied=row.key not in SCREEN_ONLY,
     )
 
 

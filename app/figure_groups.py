@@ -17,12 +17,14 @@ from core.judgement.shapes import EpisodeFigures, GasFigure, RatioFigure
 from core.record.message import Message
 
 MODELLED = Message("caveat.tidal_volume_modelled_on_mask")
+EXPECTED = "course"
+"""The group of what is expected or lies between gases: it stands on the screen only, never in text to paste."""
 _AGREES, _DISAGREES = "agrees", "does not agree"
 
 
 def figure_groups(f: EpisodeFigures, reader: Reader) -> tuple[FigureGroup, ...]:
     """All groups from top to bottom; one that has no rows is left out."""
-    make = RowMaker(reader, doubts_of(f.gases, reader))
+    make = RowMaker(reader, doubts_of(f.gases, reader), frozenset(g.at for g in f.gases if g.site_assumed))
     gas = latest_gas(f)
     modelled = make.say(MODELLED)
     made = (
@@ -31,7 +33,7 @@ def figure_groups(f: EpisodeFigures, reader: Reader) -> tuple[FigureGroup, ...]:
         _group("breathing", make.tr("Breathing"), _breathing_rows(f, make), _volume_word(f, make), modelled),
         _group("mask", make.tr("Mask and leak"), (*mask_rows(f, make), *leak_rows(f, make)), _mask_word(f, make)),
         _group("trends", make.tr("Trends"), trend_rows(f, make)),
-        _group("course", make.tr("After the last change"), course_rows(f, make)),
+        _group(EXPECTED, make.tr("After the last change"), course_rows(f, make)),
     )
     return tuple(group for group in made if group.rows)
 
@@ -68,6 +70,8 @@ def class_row(gas: GasFigure, reading: GasReading, make: RowMaker) -> FigureRow:
     why = "" if text else make.say(reading.classification_reason)
     inputs = {"ph": gas.ph, "paco2": gas.paco2_mmHg, "hco3": gas.hco3_calculated_mmol_L}
     notes = [make.tr("State: {state}").format(state=make.tr(state))] if state else []
+    if gas.site_assumed:
+        notes.append(make.say(Message("gas.site_assumed")).rstrip("."))
     if gas.off_support:
         notes.append(make.tr("Drawn off support"))
     row = FigureRow("gas_class", make.name("gas_class"), text, gas.at, make.doubted.get(gas.at, ""), tuple(notes),
@@ -112,7 +116,7 @@ def _agreement(gas: GasFigure, make: RowMaker) -> FigureRow:
     )
     value = "" if gas.consistent is None else make.tr(_AGREES if gas.consistent else _DISAGREES)
     doubt = make.doubted.get(gas.at, "") if gas.consistent is False else ""
-    why = "" if value else make.say(gas.reasons.get("consistent"))
+    why = "" if value else make.say(gas.reasons.get("consistent")) or make.tr("Not checked")
     row = FigureRow("hco3_difference", name, value, gas.at, doubt, (), why, inputs)
     return with_lines(row, (make.say(m) for m in (*gas.warnings, *gas.explanations)))
 

@@ -39,8 +39,9 @@ def leak_rows(f: EpisodeFigures, make: RowMaker) -> Iterator[FigureRow]:
     yield _limit(leak, make)
     yield _over(leak, make)
     if leak.over_since is not None:
+        lasts = (_how_long(f.as_of - leak.over_since, make),)
         yield FigureRow("leak_over_since", make.name("leak_over_since"), make.reader.time(leak.over_since),
-                        notes=(_how_long(f.as_of - leak.over_since),), inputs=_of_limit(leak, make))  # fmt: skip
+                        notes=lasts, inputs=_of_limit(leak, make))  # fmt: skip
     if leak.adjusted_at is not None:
         yield _adjustment(leak, leak.adjusted_at, make)
     if leak.probable_breaks:
@@ -126,5 +127,5 @@ def _amount(value: float | None) -> str:
     return "" if value is None else formats.quantity("leak", value)
 
 
-def _how_long(length: int) -> str:
-    return formats.minutes(length / MINUTE)
+def _how_long(length: int, make: RowMaker) -> str:
+    return make.tr("For {length}").format(length=formats.minutes(length / MINUTE))

@@ -81,10 +81,14 @@ class FigureGroup:
 
 @dataclass(frozen=True, slots=True)
 class RowMaker:
-    """Makes rows for one reader; `doubted` are the gases that carry a doubt, with its words."""
+    """Makes rows for one reader; `doubted` are the gases that carry a doubt, with its words.
+
+    `assumed` are gases of which nobody said what was sampled: too common to shout, so only the reading says it.
+    """
 
     reader: Reader
     doubted: Mapping[Instant, str]
+    assumed: frozenset[Instant] = frozenset()
 
     def tr(self, text: str) -> str:
         """A phrase in the reader's language."""
@@ -111,6 +115,7 @@ class RowMaker:
             (*notes, *(self.say(m) for m in figure.caveats)),
             why,
             self.inputs(figure.inputs),
+            self._assumption(figure),
         )
 
     def inputs(self, inputs: Mapping[str, FigureInput]) -> tuple[RowInput, ...]:
@@ -126,9 +131,12 @@ class RowMaker:
 
     def _doubt(self, figure: DerivedFigure) -> str:
         found = [self.say(figure.doubt)] if figure.doubt is not None else []
-        gases = dict.fromkeys(i.at for key, i in figure.inputs.items() if key in OF_A_GAS and i.at is not None)
-        found += [self.doubted[at] for at in gases if at in self.doubted]
+        found += [self.doubted[at] for at in _gases(figure) if at in self.doubted]
         return ". ".join(found)
+
+    def _assumption(self, figure: DerivedFigure) -> tuple[str, ...]:
+        assumed = any(at in self.assumed for at in _gases(figure))
+        return (self.say(Message("gas.site_assumed")),) if assumed else ()
 
 
 def doubts_of(gases: Iterable[GasFigure], reader: Reader) -> dict[Instant, str]:
@@ -137,7 +145,6 @@ def doubts_of(gases: Iterable[GasFigure], reader: Reader) -> dict[Instant, str]:
         "inconsistent": reader.translate("Doubtful: pH, PCO2 and bicarbonate of this gas do not agree"),
         "doubt": reader.translate("Doubtful: this gas was marked doubtful"),
         "disputed": reader.translate("Disputed: two corrections of this gas differ"),
-        "site": reader.translate("Doubtful: nobody said what was sampled, taken as arterial"),
     }
     told: dict[Instant, str] = {}
     for gas in gases:
@@ -145,12 +152,18 @@ def doubts_of(gases: Iterable[GasFigure], reader: Reader) -> dict[Instant, str]:
             "inconsistent": gas.consistent is False,
             "doubt": gas.doubt,
             "disputed": gas.disputed,
-            "site": gas.site_assumed,
         }
         found = [words[key] for key, holds in marks.items() if holds]
         if found:
             told[gas.at] = ". ".join(found)
     return told
+
+
+def _gases(figure: DerivedFigure) -> tuple[Instant, ...]:
+    """The moments of the gases that a figure was made from."""
+    return tuple(
+        dict.fromkeys(i.at for key, i in figure.inputs.items() if key in OF_A_GAS and i.at is not None)
+    )
 
 
 def with_lines(row: FigureRow, lines: Iterable[str]) -> FigureRow:

@@ -5,6 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app import formats
+from app.figure_groups import EXPECTED, figure_groups
+from app.figure_rows import FigureGroup, FigureRow
 from app.finding_names import lever_name
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
@@ -34,16 +36,45 @@ def _sections(f: EpisodeFigures, lines: FigureLines) -> Iterator[tuple[str, Iter
     yield "Due", (lines.due(d) for d in f.due if d.state != "done")
     yield "Responses", (row for r in f.responses for row in _response(r, lines))
     yield "Gases", (lines.gas(g) for g in f.gases)
-    yield "Trends", iter(
-        (lines.ratio("P/F", f.pf, is_pressure=True), lines.ratio("S/F", f.sf), lines.ratio("ROX", f.rox, decimals=2),
-         lines.leak(f.leak))
-    )  # fmt: skip
     yield "Scores", (lines.score(name, s) for name, s in f.scores.items() if s.enabled)
+    for group in (g for g in figure_groups(f, lines.reader) if g.key != EXPECTED):
+        yield f"Figures: {group.title[:1].lower()}{group.title[1:]}", _group(group, f, lines)
     if f.levers:
         yield "Levers (a qualified person decides)", _levers(f, lines)
     warnings = [*f.warnings, *(w for g in f.gases for w in g.warnings)]
     if warnings:
         yield "To check", (sentence(w, lines.reader) for w in dict.fromkeys(warnings))
+
+
+def _group(group: FigureGroup, f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
+    """A line for each figure: name, value, how old, its doubt, what goes with it; then those without a value."""
+    if group.note:
+        yield f"({group.note})"
+    for row in group.known:
+        yield f"{row.name}: {row.value}{_when(row, f, lines)}"
+        if row.doubt:
+            yield f"  ! {row.doubt}"
+        notes = ". ".join(note for note in row.notes if note != group.note)
+        if notes:
+            yield f"  {notes}"
+    by_reason: dict[str, list[str]] = {}
+    for row in group.without_value:
+        by_reason.setdefault(row.why, []).append(row.name)
+    for why, names in by_reason.items():
+        yield f"{lines.tr('No value')} ({_lowered(why)}): {'; '.join(names)}"
+
+
+def _when(row: FigureRow, f: EpisodeFigures, lines: FigureLines) -> str:
+    """The moment of a value and how long ago it was."""
+    if row.at is None:
+        return ""
+    return f" ({lines.reader.time(row.at)}, {formats.since(row.at, f.as_of)})"
+
+
+def _lowered(why: str) -> str:
+    """A reason inside a sentence; abbreviations keep their letters."""
+    first = why.partition(" ")[0]
+    return why if any(c.isupper() or c.isdigit() for c in first[1:]) else why[:1].lower() + why[1:]
 
 
 def _absent(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:

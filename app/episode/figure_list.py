@@ -89,6 +89,7 @@ class FigureFold(QWidget):
             if isinstance(fact, Fact):
                 fact.explain_wanted.connect(self.explain_wanted)
         self._column.addWidget(widget)
+        widget.show()  # at once, so that the focus can go there with the next key
         self._rows.append(widget)
 
     def _order_of_tab(self) -> None:

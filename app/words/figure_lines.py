@@ -26,7 +26,10 @@ from core.record.message import Message
 
 _ANCHORS = {"start": "Support started", "interface": "Interface changed", "break_end": "Break ended"}
 _SHARED_UNITS = (" cmH2O", " %", " L/min", "/min", " s")
-SCORE_NAMES = {"hacor": "HACOR", "hacor_updated": "HACOR, updated", "news2": "NEWS2", "rox": "ROX"}
+SCORE_NAMES = {
+    "hacor": "HACOR", "hacor_updated": "HACOR, updated", "news2": "NEWS2", "rox": "ROX",
+    "copd_failure": "COPD failure chart",
+}  # fmt: skip
 
 
 @dataclass(frozen=True, slots=True)
@@ -249,6 +252,8 @@ class FigureLines:
         """A score with its bounds, when it was taken, and its caveats."""
         shown = SCORE_NAMES.get(name, name)
         if s.points is None and s.lowest is None:
+            if s.caveat is not None and name == "copd_failure":
+                return self._risk_class(shown, s)
             return self.why(shown, s.reasons, "points") or f"{shown} {self.tr('not known')}"
         if s.points is not None:
             text = f"{shown} {formats.trimmed(s.points)}"
@@ -261,6 +266,15 @@ class FigureLines:
         if s.population == "outside":
             text += f", {self.tr('outside its population')}"
         return text + (f". {sentence(s.caveat, self.reader)}" if s.caveat else "")
+
+    def _risk_class(self, name: str, s: ScoreFigure) -> str:
+        """A score that has no points: its class, what is missing, when it was taken."""
+        text = f"{self.tr(name)}: {sentence(s.caveat, self.reader)}" if s.caveat else self.tr(name)
+        if s.missing:
+            text += f" ({self.tr('missing')}: {', '.join(quantity_name(m) for m in s.missing)})"
+        if s.at is not None:
+            text += f" {self.tr('at')} {self.reader.time(s.at)}"
+        return text + (f", {self.tr('outside its population')}" if s.population == "outside" else "")
 
     def ratio(self, name: str, r: RatioFigure, *, is_pressure: bool = False, decimals: int = 0) -> str:
         """P/F, S/F or ROX: the newest value, its slope with interval, and why not."""

@@ -8,7 +8,8 @@ from app.theme import THEMES
 EXPECTED = {
     "first", "ward", "strip", "episode", "episode-crosshair", "compare", "handover", "explain", "panels",
     "figures-folded", "figures-gas", "figures-oxygenation", "figures-breathing", "explain-doubt", "explain-none",
-    "explain-class", "explain-score", "new-episode", "correct", "map", "statistics", "as-known", "table", "help", "about",
+    "explain-class", "explain-score", "new-episode", "correct", "map", "statistics", "as-known", "table", "help",
+    "about",
 }  # fmt: skip
 
 

@@ -1,0 +1,41 @@
+"""The figures as plain text: every group, each value with its age, each doubt marked, each gap with its reason."""
+
+import pytest
+
+from app.figure_groups import EXPECTED, figure_groups
+from app.plain_figures import episode_text
+from app.words import Reader
+from tests.support.sample_ward import sample_ward
+
+ZONE = "Europe/London"
+
+
+@pytest.mark.parametrize("unit", ["mmHg", "kPa"])
+def test_every_figure_stands_in_the_text(unit):
+    reader = Reader(ZONE, unit)
+    for f in sample_ward():
+        text = episode_text(f, reader)
+        for group in (g for g in figure_groups(f, reader) if g.key != EXPECTED):
+            assert f"Figures: {group.title.lower()}" in text
+            for row in group.rows:
+                assert (f"{row.name}: {row.value}" if row.is_known else row.name) in text
+                assert row.doubt in text
+
+
+def test_the_unit_is_the_readers():
+    f = sample_ward()[0]
+    assert "A-a gradient, simple form: 62 mmHg (28-Mar-2026 04:18, 1 h 12 min ago)" in episode_text(f, Reader(ZONE))
+    assert "A-a gradient, simple form: 8.2 kPa" in episode_text(f, Reader(ZONE, "kPa"))
+
+
+def test_doubts_and_gaps_are_said():
+    text = episode_text(sample_ward()[0], Reader(ZONE))
+    assert "    ! Tidal volume doubtful: leak over 30 L/min" in text
+    assert "No value (holds on room air only): A-a gradient expected for age" in text
+    assert "COPD failure chart: risk class: between (missing: APACHE II)" in text
+
+
+def test_nothing_expected_or_interpolated_is_in_text_that_people_paste():
+    text = episode_text(sample_ward()[0], Reader(ZONE))
+    assert "PaCO2 expected:" not in text
+    assert "after it:" not in text
