@@ -10,6 +10,7 @@ from PySide6.QtWidgets import QApplication, QLayoutItem
 from app.episode_feed import EpisodeFeed
 from app.known_strip import KnownStrip
 from app.log_strip import LogStrip
+from app.notice_strip import NoticeStrip
 from app.pages import Pages
 from app.progress_line import ProgressLine
 from app.session import SessionModel
@@ -28,7 +29,7 @@ class Opened:
     strip: LogStrip
 
 
-LASTING = (TopBar, ProgressLine, KnownStrip)
+LASTING = (TopBar, ProgressLine, KnownStrip, NoticeStrip)
 """Parts of the window that outlive a store: they are hidden, not thrown away."""
 
 

@@ -75,6 +75,7 @@ class Session:
     selection: str | None = None
     is_demo: bool = False
     read_only: bool = False
+    encrypted: bool | None = None
     layout_revision: int = 0
     notices: tuple[Message, ...] = ()
     """What a person should know of the store: why it is read-only, a policy that cannot be read."""
@@ -196,7 +197,7 @@ class SessionModel(QObject):
         facts = outcome.value
         self._session = replace(self._session, head=outcome.head, policy=facts.policy,
                                 read_only=facts.read_only, layout_revision=facts.layout_revision,
-                                notices=facts.notices)  # fmt: skip
+                                encrypted=facts.encrypted, notices=facts.notices)  # fmt: skip
         self.changed.emit(Changed(frozenset({What.STORE, What.POLICY, What.RECORD}), facts.episodes))
 
     def _found(self, outcome: Outcome[store_operations.Changes]) -> None:

@@ -17,6 +17,7 @@ from app.episode_feed import EpisodeFeed
 from app.episode_shown import EpisodeOnScreen
 from app.failure import Failure
 from app.first_page import FirstPage
+from app.keeping import Keeping
 from app.known_strip import KnownStrip
 from app.log_strip import LogStrip
 from app.opened import Opened, is_on_a_screen, let_go
@@ -58,6 +59,7 @@ class MainWindow(QMainWindow):
         self.progress = ProgressLine(self)
         self.known = KnownStrip(self.theme)
         self._connect_known()
+        self.keeping = Keeping(self)
         self._middle = QWidget()
         self._column = QVBoxLayout(self._middle)
         self._column.setContentsMargins(0, 0, 0, 0)
@@ -144,6 +146,7 @@ class MainWindow(QMainWindow):
             apply_theme(app, self.theme)
         self.top.set_theme(self.theme)
         self.known.set_theme(self.theme)
+        self.keeping.set_theme(self.theme)
         if self.opened is not None:
             self.opened.pages.set_theme(self.theme)
             self.opened.strip.set_theme(self.theme)
@@ -178,7 +181,8 @@ class MainWindow(QMainWindow):
         looks_back = self.opened is not None and not self.opened.model.session.is_live
         for deed in DEEDS:
             allowed = (has_store or not deed.needs_store) and (has_episode or not deed.needs_episode)
-            self.actions_by_key[deed.key].setEnabled(allowed and not (looks_back and deed.records))
+            kept = (looks_back or self.keeping.forbids_recording) and deed.records
+            self.actions_by_key[deed.key].setEnabled(allowed and not kept)
 
     # what is shown
 
@@ -207,6 +211,7 @@ class MainWindow(QMainWindow):
         feed = WardFeed(model, self.preferences, self)
         episode_feed = EpisodeFeed(model, feed, self.preferences.gas_unit, self)
         self.opened = Opened(model, feed, episode_feed, Pages(self.theme), LogStrip(self.theme, model))
+        self._column.addWidget(self.keeping.notices)
         self._column.addWidget(self.known)
         self._column.addWidget(self.opened.pages, 1)
         self.progress.stand_over(self.opened.pages)
@@ -216,6 +221,7 @@ class MainWindow(QMainWindow):
         foot.addWidget(self.opened.strip)
         self._column.addLayout(foot)
         self._connect(self.opened)
+        self.keeping.opened(model)
         self._tell_session()
         self._place_top()
         self.opened.pages.ward.lanes.setFocus()
@@ -324,19 +330,24 @@ class MainWindow(QMainWindow):
     def _moment_changed(self) -> None:
         """Another moment is looked at: nothing can be logged into the past, and no screen may stay behind."""
         o = self._now_open()
-        o.strip.set_closed("" if o.model.session.is_live else self.tr(
-            "Looking back: nothing can be logged. Alt+Home goes back to now."))  # fmt: skip
-        self._set_ticks()
+        self.close_or_open_strip()
         self.doers.review.count_later()
         if o.pages.name in ("handover", "statistics"):
             self._fill_page(o.pages.name)
+
+    def close_or_open_strip(self) -> None:
+        """The strip takes a line only where it can be recorded, and says why where not."""
+        o = self._now_open()
+        looking_back = self.tr("Looking back: nothing can be logged. Alt+Home goes back to now.")
+        o.strip.set_closed(self.keeping.why_closed() if o.model.session.is_live else looking_back)
+        self._set_ticks()
 
     def _tell_session(self) -> None:
         session = self._now_open().model.session
         self.top.show_session(session)
         self.known.show_session(session)
         self._place_top()
-        self.setWindowTitle(self.tr("{store} - Luffmark").format(store=session.store_path.name))
+        self.setWindowTitle(self.keeping.title(session))
 
     def _ward_refreshed(self, content: WardContent) -> None:
         o = self._now_open()
@@ -394,6 +405,7 @@ class MainWindow(QMainWindow):
         if self.opened is None:
             return
         o, self.opened = self.opened, None
+        self.keeping.closing()
         o.model.close()
         for part in (o.episode_feed, o.feed, o.model):
             part.deleteLater()

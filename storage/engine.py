@@ -63,7 +63,7 @@ class Database:
     ) -> None:
         self.path = path
         self.read_only = mode in ("ro", "immutable")
-        self._busy = busy
+        self._key, self._busy = key, busy
         self._write_lock = RLock()
         self._file = _identity(path)
         self.engine = sa.create_engine(
@@ -112,6 +112,20 @@ class Database:
                     yield connection
         finally:
             self._write_lock.release()
+
+    def takes_writing(self, seconds: float) -> bool:
+        """Whether the write lock can be had within a time; it is given back at once."""
+        connection = raw_connection(self.path, self._key, busy=seconds)
+        try:
+            connection.execute("BEGIN IMMEDIATE")
+            connection.execute("ROLLBACK")
+        except dbapi2.OperationalError as error:
+            if translated(error, self.path).message.key == "store.busy":
+                return False
+            raise translated(error, self.path) from error
+        finally:
+            connection.close()
+        return True
 
     @contextmanager
     def _translating(self) -> Iterator[None]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 from uuid import uuid4
@@ -36,7 +37,7 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
         RecordError: `passphrase.too_short`.
     """
     _check_free(path)
-    facts = {"format": str(schema.FORMAT), "store_id": str(uuid4()), **facts}
+    facts = {"format": str(schema.FORMAT), "readable_from": str(schema.FORMAT), "store_id": str(uuid4()), **facts}
     new = keys.new_key(facts["store_id"], passphrase, cost) if passphrase is not None else None
     key = new.key if new else None
     _claim(path)
@@ -96,12 +97,17 @@ def _stamp(connection: sa.Connection) -> None:
     connection.execute(sa.insert(table), {"version_num": REVISION})
 
 
+ARCHIVE = "archive"
+"""The fact that marks an archive of closed episodes: it is read and never written again."""
+PROBE_SECONDS = 1.0
+"""How long an opening waits to see whether another program holds the write lock."""
 REVISION = "0001"
 """The newest migration; a test holds it equal to the migrations' own head."""
 
 
 def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float = BUSY_SECONDS) -> Opened:
-    """Open a store's file. Where the place takes no writing it opens read-only, with a notice.
+    """Open a store's file. Where the place takes no writing, or its format is newer and still readable, it opens
+    read-only; where another program is writing it opens all the same. Each with its notice.
 
     Raises:
         StoreError: what stands in the way: missing, newer, damaged, no store, locked, a network share.
@@ -116,16 +122,22 @@ def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float 
     database = Database(path, key, mode=_mode(path, read_only or bool(notices)), busy=busy)
     try:
         facts = check_facts(database)
+        newer = newer_notice(facts, path)
         with database.read() as connection:
-            wrong = trigger_findings(connection)
+            wrong = [] if newer else trigger_findings(connection)
     except BaseException:
         database.close()
         raise
-    if wrong and not database.read_only:
-        notices += [Message("store.trigger", {"name": n, "what": what}) for n, what in wrong]
+    closed = [newer] if newer else [Message("store.trigger", {"name": n, "what": what}) for n, what in wrong]
+    if facts.get(ARCHIVE) == "yes":
+        closed.append(Message("store.archive", {"path": path.name}))
+    if closed and not database.read_only:
         database.close()
         database = Database(path, key, mode="ro", busy=busy)
-    return Opened(database, key, facts, tuple(notices))
+    if not database.read_only and not database.takes_writing(min(busy, PROBE_SECONDS)):
+        notices.append(Message("store.busy_for_now", {"path": path.name}))
+    told = closed if newer or not read_only else []  # who asked to read only need not be told that it is so
+    return Opened(database, key, facts, (*notices, *told))
 
 
 def _mode(path: Path, read_only: bool) -> str:
@@ -177,14 +189,26 @@ def check_facts(database: Database) -> dict[str, str]:
         if "no such table" in str(error):
             raise store_error("store.not_a_store", path=database.path.name) from error
         raise
-    _check_format(facts.get("format", ""), database.path)
+    _check_format(facts, database.path)
     return facts
 
 
-def _check_format(text: str, path: Path) -> None:
+def newer_notice(facts: Mapping[str, str], path: Path) -> Message | None:
+    """What to say of a store of a newer format that this program may still read; None for one of its own."""
+    if int(facts["format"]) <= schema.FORMAT:
+        return None
+    return Message("store.newer_read_only", {"path": path.name, "format": int(facts["format"])})
+
+
+def _check_format(facts: Mapping[str, str], path: Path) -> None:
+    """A newer format is refused unless the store itself says from which format on it can be read: a program
+    must not guess what it does not know."""
+    text, least = facts.get("format", ""), facts.get("readable_from", "")
     if not text.isdigit():
         raise store_error("store.not_a_store", path=path.name)
-    if int(text) > schema.FORMAT:
-        raise store_error("store.newer", path=path.name, format=int(text), accepted=schema.FORMAT)
-    if int(text) < schema.FORMAT:
-        raise store_error("store.older", path=path.name, format=int(text), accepted=schema.FORMAT)
+    found = int(text)
+    readable = least.isdigit() and int(least) <= schema.FORMAT
+    if found > schema.FORMAT and not readable:
+        raise store_error("store.newer", path=path.name, format=found, accepted=schema.FORMAT)
+    if found < schema.FORMAT:
+        raise store_error("store.older", path=path.name, format=found, accepted=schema.FORMAT)

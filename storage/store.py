@@ -99,6 +99,10 @@ class Store(StoreKept):
         """Whether nothing can be written; `notices` say why where nobody asked for it."""
         return self._opened.database.read_only
 
+    def takes_writing(self, seconds: float = 0.2) -> bool:
+        """Whether an entry could be recorded now: not read-only, and no other program holds the write lock."""
+        return not self.read_only and self._opened.database.takes_writing(seconds)
+
     @property
     def imported(self) -> bool:
         """Whether recording times of files are honoured while it is empty."""
@@ -297,8 +301,15 @@ class Store(StoreKept):
     # -- care ----------------------------------------------------------------------------------------
 
     def verify(self) -> tuple[Message, ...]:
-        """Check the store whole; one message per finding, none when all is well."""
+        """Check the store whole; one message per finding, none when all is well.
+
+        Raises:
+            StoreError: `store.newer` for a store of a newer format: its rows may hold more than is known here.
+        """
         from storage.verify import findings
+
+        if newer := opening.newer_notice(self._opened.facts, self.path):
+            raise store_error("store.newer", **newer.values, accepted=s.FORMAT)
 
         return findings(self._opened.database, encrypted=self.is_encrypted)
 

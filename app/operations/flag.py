@@ -35,14 +35,15 @@ class FlagRequest:
 
 def keep_transitions(store: Store, who: str, now: Instant, request: Iterable[str]) -> Outcome[int]:
     """Write what happened to the flags of some episodes since the ledger was last told: raised, no longer met,
-    undone. How many entries that took; none where the ledger says it already."""
+    undone. How many entries that took; none where the ledger says it already, or where another program holds the
+    store: the next look tells it."""
     policy = in_force(store)
     entries: list[NewEntry] = []
     for key in request:
         record = load(store, key)
         flags = episode_figures(record, now, policy).flags
         entries += transitions(flags, record.transitions, key, policy.hash, now)
-    if not entries or store.read_only:
+    if not entries or not store.takes_writing():
         return Outcome(0, store.head())
     receipt = store.append(entries, by=who, operation="flag.transitions", now=now)
     return Outcome(len(entries), receipt.last_seq)

@@ -63,6 +63,11 @@ def changes(store: Store, who: str, now: Instant, request: int) -> Outcome[Chang
     return Outcome(Changes(found.episodes, in_force.policy, found.layout_revision, notices), found.head)
 
 
+def takes_writing(store: Store, who: str, now: Instant, request: None) -> Outcome[bool]:
+    """Whether an entry could be recorded now: another program may hold the store."""
+    return Outcome(store.takes_writing(), store.head())
+
+
 def verify(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[Message, ...]]:
     """Check the store whole: pages, chain, triggers, domain rules, derived tables. Empty when all is well."""
     return Outcome(tuple(store.verify()), store.head())

@@ -44,8 +44,11 @@ TEMPLATES: Final[dict[str, str]] = {
     "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
         "Replay fewer episodes, or a shorter span.",
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
+    "store.archive": "{path} is an archive of closed episodes: it is open for reading only.",
     "store.backup_failed": "The backup {path} could not be written: {detail}.",
     "store.busy": "{path} is busy: another program is writing ({detail}). Try again in a moment.",
+    "store.busy_for_now": "Another program is writing into {path}: it can be read, and nothing can be recorded until "
+        "that ends.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",
     "store.damaged":
         "[[{path}]][[!path|The store]] is damaged: {detail}. Restore the newest backup into a new store.",
@@ -61,6 +64,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.network_share": "{path} lies on a network share ({kind}), where locks cannot be relied on. "
         "Use a local disk.",
     "store.newer": "{path} is of format {format}; this program reads up to {accepted}. Update the program.",
+    "store.newer_read_only": "{path} was written by a newer program (format {format}): it is open for reading only. "
+        "Update the program to record.",
     "store.no_folder": "The folder {path} is not there.",
     "store.not_a_store": "{path} is not a store of this program.",
     "store.not_encrypted": "{path} is not encrypted, so it has no passphrase.",

@@ -94,9 +94,17 @@ def _step(database: Database, directory: ScriptDirectory, revision: str) -> None
         with environment:
             environment.run_migrations()
         _refresh_triggers(connection)
-        reached = getattr(directory.get_revision(revision).module, "FORMAT", schema.FORMAT)
-        facts = schema.store_facts
-        connection.execute(sa.update(facts).where(facts.c.key == "format").values(value=str(reached)))
+        module = directory.get_revision(revision).module
+        reached = getattr(module, "FORMAT", schema.FORMAT)
+        _say_format(connection, reached, getattr(module, "READABLE_FROM", reached))
+
+
+def _say_format(connection: sa.Connection, reached: int, readable_from: int) -> None:
+    """An older program may read the store only where the migration says so: unsaid, it is kept from guessing."""
+    facts = schema.store_facts
+    for key, value in (("format", reached), ("readable_from", readable_from)):
+        connection.execute(sa.delete(facts).where(facts.c.key == key))
+        connection.execute(sa.insert(facts), {"key": key, "value": str(value)})
 
 
 def _refresh_triggers(connection: sa.Connection) -> None:

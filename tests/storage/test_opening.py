@@ -42,11 +42,32 @@ def test_what_is_no_store_is_refused(tmp_path: Path) -> None:
     assert failure(tmp_path / "other.luff") == "store.not_a_store"
 
 
-def test_a_newer_store_is_refused(store: Store) -> None:
-    store.close()
-    c = raw_connection(store.path, None)
+def as_newer(path: Path, readable_from: str) -> None:
+    c = raw_connection(path, None)
     c.execute("UPDATE store_facts SET value = '99' WHERE key = 'format'")
+    c.execute("UPDATE store_facts SET value = ? WHERE key = 'readable_from'", (readable_from,))
+    c.execute("ALTER TABLE entry ADD COLUMN of_the_future TEXT")
     c.close()
+
+
+def test_a_newer_store_that_says_it_can_be_read_opens_for_reading(store: Store) -> None:
+    store.append([rr()], by="AB", operation="log", now=NOW)
+    store.close()
+    as_newer(store.path, "1")
+    with Store.open(store.path) as reader:
+        assert reader.read_only
+        assert [n.key for n in reader.notices] == ["store.newer_read_only"]
+        assert len(reader.entries("E1")) == 1
+        with pytest.raises(StoreError, match=r"store.newer"):
+            reader.verify()  # rows may hold more than this program knows: it does not judge them
+    with Store.open(store.path, read_only=True) as reader:
+        assert [n.key for n in reader.notices] == ["store.newer_read_only"]
+
+
+@pytest.mark.parametrize("readable_from", ["2", "99", "", "soon"])
+def test_a_newer_store_is_refused(store: Store, readable_from: str) -> None:
+    store.close()
+    as_newer(store.path, readable_from)
     with pytest.raises(StoreError) as caught:
         Store.open(store.path)
     assert caught.value.message.key == "store.newer"
@@ -107,12 +128,15 @@ def test_another_writer_beyond_the_timeout_is_said_in_words(store: Store) -> Non
     other = raw_connection(store.path, None)
     other.execute("BEGIN IMMEDIATE")
     with Store.open(store.path, busy_seconds=0.2) as mine:
+        assert [n.key for n in mine.notices] == ["store.busy_for_now"]
+        assert not mine.takes_writing()
         with pytest.raises(StoreError) as caught:
             mine.append([rr()], by="AB", operation="log", now=NOW)
         assert caught.value.message.key == "store.busy"
         assert mine.head() == 0  # reading goes on
         other.execute("ROLLBACK")
         other.close()
+        assert mine.takes_writing()
         assert mine.append([rr()], by="AB", operation="log", now=NOW).last_seq == 1
 
 
