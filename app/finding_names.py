@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from app.names_by_policy import by_policy
 from app.words import Reader, sentence, templates
 from core.record.message import Message
 
@@ -16,8 +17,8 @@ def _name(kind: str, key: str, reader: Reader) -> str:
 
 
 def marker_name(key: str, reader: Reader = PLAIN) -> str:
-    """What a marker is called."""
-    return _name("marker", key, reader)
+    """What a marker is called, with the limits of the policy in force where its name says any."""
+    return by_policy(key, _name("marker", key, reader))
 
 
 def due_name(key: str, reader: Reader = PLAIN) -> str:

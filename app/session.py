@@ -14,6 +14,7 @@ from typing import Any
 
 from PySide6.QtCore import QObject, QTimer, Signal, Slot
 
+from app import names_by_policy
 from app.clock import REAL, Clock
 from app.failure import Failure
 from app.flag_keeper import FlagKeeper
@@ -195,6 +196,7 @@ class SessionModel(QObject):
 
     def _described(self, outcome: Outcome[store_operations.StoreFacts]) -> None:
         facts = outcome.value
+        names_by_policy.use(facts.policy)
         self._session = replace(self._session, head=outcome.head, policy=facts.policy,
                                 read_only=facts.read_only, layout_revision=facts.layout_revision,
                                 encrypted=facts.encrypted, notices=facts.notices)  # fmt: skip
@@ -205,6 +207,7 @@ class SessionModel(QObject):
         what = {What.RECORD} if outcome.head > known.head else set()
         if found.policy is not None:
             what.add(What.POLICY)
+            names_by_policy.use(found.policy)
         if found.layout_revision != known.layout_revision:
             what.add(What.LAYOUT)
         if not what:

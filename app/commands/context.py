@@ -120,13 +120,16 @@ class Context:
 
 def _policies_passed_over(store: Store) -> tuple[Message, ...]:
     """Newer policies of the store that cannot be read; a damaged store says so itself when it is used."""
+    from app.names_by_policy import use
     from app.operations import policy
     from storage.errors import StoreError
 
     try:
-        return policy.found(store).passed_over
+        found = policy.found(store)
     except StoreError:
         return ()
+    use(found.policy)
+    return found.passed_over
 
 
 def default_store() -> Path:

@@ -192,9 +192,11 @@ def _name_from(kind: str) -> Writer:
     """The name of a marker or due item."""
 
     def written(value: Value, _values: Mapping[str, Value], reader: Reader) -> str:
+        from app.names_by_policy import by_policy
         from app.words.names import TEMPLATES
 
-        return reader.translate(TEMPLATES.get(f"{kind}.{value}", str(value).replace("_", " ")))
+        name = reader.translate(TEMPLATES.get(f"{kind}.{value}", str(value).replace("_", " ")))
+        return by_policy(str(value), name) if kind == "marker" else name
 
     return written
 
