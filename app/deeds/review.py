@@ -127,6 +127,12 @@ class ReviewDeeds(ClosingDeeds):
         table = later_table(self._known, labels, self._known_at, self.window.reader)
         TableDialog(table, self.window.theme, self.window).open()
 
+    # the policy
+
+    def do_policy(self) -> None:
+        """The policy in force."""
+        self.window.doers.policy.show()
+
     # shift figures
 
     def do_show_statistics(self) -> None:

@@ -189,13 +189,22 @@ def _numbers(path: str, rule: Table, shipped: MarkerRule | DueRule) -> Iterator[
             yield f"{path}.{group}.{name}", ERROR, _unknown(f"{path}.{group}", name, list(wanted) or ["none"])
 
 
-def differences(own: Table) -> Iterator[PolicyDifference]:
-    """What differs from the shipped policy, by path; the name and the version of the policy included."""
-    shipped = dict(_leaves(tomllib.loads(shipped_text()), ""))
+def differences(own: Table, other: str | None = None) -> Iterator[PolicyDifference]:
+    """What differs from another policy's text (the shipped one), by path; name and version included."""
+    shipped = dict(_leaves(tomllib.loads(shipped_text() if other is None else other), ""))
     mine = dict(_leaves(own, ""))
     for path in sorted(shipped.keys() | mine.keys()):
         if shipped.get(path) != mine.get(path):
             yield PolicyDifference(path, shipped.get(path), mine.get(path))
+
+
+def between(text: str, other: str) -> tuple[PolicyDifference, ...]:
+    """What a readable policy's text has otherwise than another one; `shipped` of each is the other's.
+
+    >>> between(shipped_text().replace("version = 1", "version = 2"), shipped_text())
+    (PolicyDifference(path='version', shipped=1, own=2),)
+    """
+    return tuple(differences(tomllib.loads(text), other))
 
 
 def _leaves(value: Any, path: str) -> Iterator[tuple[str, Value]]:
