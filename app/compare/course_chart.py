@@ -50,7 +50,7 @@ class CourseChart(QWidget):
         self.update()
 
     def minimumSizeHint(self) -> QSize:
-        return QSize(self._theme.px(480), self._theme.px(5 * 84 + 40))
+        return QSize(self._theme.px(480), self._theme.px(6 * 78 + 40))
 
     def paintEvent(self, event: QPaintEvent) -> None:  # noqa: ARG002
         painter = QPainter(self)

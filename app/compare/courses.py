@@ -7,15 +7,17 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from app.episode.traces import shown_as
+from app.episode.traces import Shown, shown_as
 from app.formats import fixed
 from app.operations.figures import EpisodeAnswer
 from app.phrases import computed_name, translate
 from app.ward.lane_words import OnWard, indication_word
+from core.figures.sf_course import sf_course
+from core.judgement.policy import Policy, shipped_policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.instant import HOUR, Instant
 
-ROWS = ("ph", "paco2", "pf", "rr", "pressure_support")
+ROWS = ("ph", "paco2", "pf", "sf", "rr", "pressure_support")
 LEAST, MOST = 2, 8
 
 
@@ -53,12 +55,15 @@ class Comparison:
     """Labels of episodes without a known start: they cannot be laid on this axis."""
 
 
-def compare(chosen: Sequence[OnWard], answers: Mapping[str, EpisodeAnswer], gas_unit: str) -> Comparison:
-    """Lay episodes over each other."""
+def compare(
+    chosen: Sequence[OnWard], answers: Mapping[str, EpisodeAnswer], gas_unit: str, policy: Policy | None = None
+) -> Comparison:
+    """Lay episodes over each other. `policy` says up to which SpO2 an S/F means something (None: the shipped one)."""
     known = [e for e in chosen if e.figures.support.since is not None][:MOST]
     left_out = tuple(e.figures.label for e in chosen if e.figures.support.since is None)
     names = {n: episode_name(e.figures) for n, e in enumerate(known, 1)}
-    rows = tuple(_row(key, known, answers, gas_unit) for key in ROWS)
+    rules = policy or shipped_policy()
+    rows = tuple(_row(key, known, answers, gas_unit, rules) for key in ROWS)
     last = max((float(line.hours[-1]) for row in rows for line in row.lines if line.hours.size), default=1.0)
     return Comparison(rows, names, max(last, 1.0), left_out)
 
@@ -69,11 +74,13 @@ def episode_name(f: EpisodeFigures) -> str:
     return f"{f.label}, {indication_word(str(indication))}" if indication else f.label
 
 
-def _row(key: str, chosen: Sequence[OnWard], answers: Mapping[str, EpisodeAnswer], gas_unit: str) -> Row:
-    shown = shown_as(key, gas_unit)
+def _row(
+    key: str, chosen: Sequence[OnWard], answers: Mapping[str, EpisodeAnswer], gas_unit: str, policy: Policy
+) -> Row:
+    shown = Shown("", 0, 1.0) if key == "sf" else shown_as(key, gas_unit)
     lines = []
     for number, one in enumerate(chosen, 1):
-        t, v = _values(key, one, answers[one.figures.episode])
+        t, v = _values(key, one, answers[one.figures.episode], policy)
         start = one.figures.support.since or 0
         if t.size:
             lines.append(Line(number, (t - start) / HOUR, v * shown.factor, key == "pressure_support"))
@@ -81,13 +88,17 @@ def _row(key: str, chosen: Sequence[OnWard], answers: Mapping[str, EpisodeAnswer
     values = values[np.isfinite(values)]
     low, high = (float(values.min()), float(values.max())) if values.size else (0.0, 1.0)
     air = max((high - low) * 0.1, 10**-shown.decimals)
-    title = {"ph": "pH", "paco2": "PaCO2", "rr": translate("compare", "Respiratory rate")}.get(
+    title = {"ph": "pH", "paco2": "PaCO2", "sf": "S/F", "rr": translate("compare", "Respiratory rate")}.get(
         key
     ) or computed_name(key)
     return Row(key, title, shown.unit, shown.decimals, low - air, high + air, tuple(lines))
 
 
-def _values(key: str, one: OnWard, answer: EpisodeAnswer) -> tuple[np.ndarray, np.ndarray]:
+def _values(
+    key: str, one: OnWard, answer: EpisodeAnswer, policy: Policy
+) -> tuple[np.ndarray, np.ndarray]:
+    if key == "sf":
+        return sf_course(answer.record, one.course.until, policy)
     if key == "pressure_support":
         stretches = one.course.stretches
         t = [s.start for s in stretches] + ([stretches[-1].end] if stretches else [])
