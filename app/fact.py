@@ -51,6 +51,7 @@ class Fact(QFrame):
             row.addWidget(sign, 0, Qt.AlignmentFlag.AlignTop)
         words = QVBoxLayout()
         words.setSpacing(theme.px(1))
+        self._has_value = bool(value) and not value_below
         self._title = _label(title, "quiet" if quiet else "strong")
         words.addLayout(_head(theme, self._title, "" if value_below else value))
         if value and value_below:
@@ -149,7 +150,9 @@ class Fact(QFrame):
     def _place_why(self) -> None:
         assert self.why is not None
         self.why.adjustSize()
-        self.why.move(self.width() - self.why.width() - 4, self.height() - self.why.height() - 3)
+        below = self._title.fontMetrics().height() if self._has_value else 0
+        # beside the short lines: it must cover no word
+        self.why.move(self.width() - self.why.width() - 4, (9 if below else 4) + below)
         self.why.raise_()
 
     def focusInEvent(self, event: QFocusEvent) -> None:

@@ -30,9 +30,10 @@ class FigureList(QFrame):
         px = theme.px
         column.setContentsMargins(px(6), px(8), px(6), px(6))
         column.setSpacing(0)
-        label = heading(translate("side", "Figures"))
+        label = heading(translate("side", "Every figure"))
         label.setContentsMargins(px(8), 0, px(8), 0)
         column.addWidget(label)
+        column.addWidget(_note(theme, translate("side", "F5 unfolds all, F2 or Why explains one.")))
         self.folds = tuple(FigureFold(theme, group, reader, now) for group in groups)
         for fold in self.folds:
             fold.explain_wanted.connect(self.explain_wanted)
@@ -108,7 +109,7 @@ def _note(theme: Theme, text: str) -> QLabel:
     label.setTextFormat(Qt.TextFormat.PlainText)
     label.setWordWrap(True)
     label.setProperty("role", "caption")
-    label.setContentsMargins(theme.px(8), theme.px(2), theme.px(8), theme.px(6))
+    label.setContentsMargins(theme.px(10), theme.px(1), theme.px(8), theme.px(5))
     return label
 
 
