@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import QSize, Qt, Signal
 from PySide6.QtWidgets import (
     QDialog,
     QFrame,
@@ -27,7 +27,7 @@ from app.words import Reader, sentence
 from core.judgement.policy_check import check
 
 _RULE = Qt.ItemDataRole.UserRole
-_WIDTHS = (288, 84, 262, 186, 134)
+_WIDTHS = (286, 84, 256, 180, 148)
 """Pixels of the columns at the smallest text: rule, strength, limits, for whom, how sure; then source."""
 
 
@@ -64,7 +64,8 @@ class PolicyDialog(QDialog):
         self.save.clicked.connect(self.save_wanted)
         self.close_it.clicked.connect(self.close)
         self.show_policy(found, reader)
-        self.resize(theme.px(1260), theme.px(720))
+        room = parent.size() if parent is not None else QSize(1280, 800)
+        self.resize(min(theme.px(1640), room.width() - 20), min(theme.px(960), room.height() - 80))
 
     def _made_tree(self) -> QTreeWidget:
         tree = QTreeWidget()

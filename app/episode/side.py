@@ -9,6 +9,7 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
 
 from app.episode.figure_list import FigureList
+from app.episode.flag_history import history_fact, word_lines
 from app.explain import Explainer, Explanation, sure_words
 from app.explain_figures import CLASSES, explain_row, score_in, score_value
 from app.fact import Fact, heading
@@ -131,7 +132,7 @@ class _Facts:
         yield translate("side", "Now"), tuple(self._now())
         yield (
             translate("side", "Flags"),
-            tuple(self._flags()) or (self._quiet(translate("side", "No open flag")),),
+            (*(tuple(self._flags()) or (self._quiet(translate("side", "No open flag")),)), *self._earlier()),
         )
         yield translate("side", "Due"), tuple(self._due()) or (self._quiet(translate("side", "Nothing due")),)
         levers = tuple(self._levers())
@@ -240,8 +241,7 @@ class _Facts:
             ]
             word = translate("side", "{count} more of this kind").format(count=len(under))
             lines = [self._evidence(flag), self._source(flag)]
-            if flag.seen_by:
-                lines.append(translate("side", "seen by {who}").format(who=flag.seen_by))
+            lines += word_lines(flag, self.reader)
             yield Fact(
                 self.theme,
                 f"{marker_name(flag.marker, self.reader)}",
@@ -252,6 +252,11 @@ class _Facts:
                 folded=folded,
                 fold_word=word,
             )
+
+    def _earlier(self) -> Iterator[Fact]:
+        fact = history_fact(self.theme, self.f, self.reader)
+        if fact is not None:
+            yield fact
 
     def _with_others(self, explanation: Explanation, under: Sequence[FlagFigure]) -> Explanation:
         """The strongest flag of a kind explains those that stand under it too."""

@@ -13,7 +13,11 @@ _POPULATION = "validated in: {population}"
 EVIDENCE: Final[dict[str, str]] = {
     "evidence.after_beta_agonist":
         "A beta-agonist or a nebuliser was given at {at:time}[[ ({text})]]: lactate may come from it.",
-    "evidence.ceiling": "Ceiling of care: {ceiling}.",
+    "evidence.ceiling":
+        "Ceiling of care: {ceiling}. Escalating here means "
+        "{ceiling:pick no intubation=a decision with the responsible clinician, not intubation;"
+        "ward support is the ceiling=telling the responsible clinician, not a higher level of care;"
+        "comfort=comfort and telling whom it concerns;else=what was agreed}.",
     "evidence.change": "{quantity:name} {before:q} ({before_at:time}) to {after:q} ({at:time}), {change:q+}"
         "[[, noise {noise:qn}]].",
     "evidence.event": "{event:name}[[ {text}]] at {at:time}.",
