@@ -43,6 +43,7 @@ class Deed:
 
 MENUS: Final = (
     ("file", QT_TRANSLATE_NOOP("action", "&File")),
+    ("store", QT_TRANSLATE_NOOP("action", "&Store")),
     ("log", QT_TRANSLATE_NOOP("action", "&Log")),
     ("ward", QT_TRANSLATE_NOOP("action", "&Ward")),
     ("episode", QT_TRANSLATE_NOOP("action", "&Episode")),
@@ -70,6 +71,8 @@ DEEDS: Final = (
          QT_TRANSLATE_NOOP("action", "Say by initials who is logging from now on."), parted=True),
     Deed("quit", "file", QT_TRANSLATE_NOOP("action", "Quit"), ("Ctrl+Q",),
          QT_TRANSLATE_NOOP("action", "Close the window. Everything logged is already kept."), needs_store=False),
+    Deed("change_passphrase", "store", QT_TRANSLATE_NOOP("action", "Change passphrase..."), ("Ctrl+Shift+Y",),
+         QT_TRANSLATE_NOOP("action", "A new passphrase for this store, and a new recovery code if you like.")),
     Deed("focus_strip", "log", QT_TRANSLATE_NOOP("action", "Log a line"), ("Ctrl+L", "/"),
          QT_TRANSLATE_NOOP("action", "Go to the log strip, for the selected patient."), needs_episode=True),
     Deed("gas_sent", "log", QT_TRANSLATE_NOOP("action", "Gas sent"), ("F6",),

@@ -41,9 +41,11 @@ class ProgressLine(QFrame):
         self._wait.timeout.connect(self._appear)
         self.hide()
 
-    def stand_over(self, widget: QWidget) -> None:
-        """The widget at whose lower right it stands."""
+    def stand_over(self, widget: QWidget | None) -> None:
+        """The widget at whose lower right it stands; None: out of sight, for what it stood over goes."""
         self._over = widget
+        if widget is None:
+            self.busy_changed(False)
 
     def show_progress(self, progress: Progress) -> None:
         """Say how far the running work is."""

@@ -62,8 +62,10 @@ def run_window(store: Path | None = None, passphrase: str | None = None, by: str
     window.show()
     if by:
         window.prefer(person=by)
-    if store is not None:
+    if store is not None and (store.exists() or passphrase is not None):
         window.doers.file.open_path(store, passphrase=passphrase, create=not store.exists())
+    elif store is not None:
+        window.doers.file.make_store(store)
     return application().exec()
 
 

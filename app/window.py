@@ -384,7 +384,7 @@ class MainWindow(QMainWindow):
         cannot be opened leads back to the first page."""
         text = sentence(failure.message, self.reader)
         if failure.message.key in ASK_PASSPHRASE:
-            self.doers.file.ask_passphrase()
+            self.doers.file.ask_passphrase(text if failure.message.key == "key.wrong_passphrase" else "")
         elif self.opened is not None and not self.opened.feed.is_ready and not failure.is_ours:
             self.close_model()
             self.show_first_page()
@@ -406,6 +406,7 @@ class MainWindow(QMainWindow):
             return
         o, self.opened = self.opened, None
         self.keeping.closing()
+        self.progress.stand_over(None)
         o.model.close()
         for part in (o.episode_feed, o.feed, o.model):
             part.deleteLater()

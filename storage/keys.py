@@ -86,6 +86,15 @@ def new_recovery_code() -> str:
     return "-".join(text[i : i + 4] for i in range(0, _CODE_LENGTH, 4))
 
 
+def check_envelope(text: str) -> None:
+    """Refuse an envelope that was altered or is damaged, before a passphrase is asked for.
+
+    Raises:
+        StoreError: `key.envelope_altered`, `key.envelope_newer`.
+    """
+    _read(text)
+
+
 def open_envelope(text: str, secret: str) -> bytes:
     """The data key, by passphrase or recovery code.
 
@@ -110,6 +119,15 @@ def change_passphrase(text: str, secret: str, new: str, cost: Cost = DEFAULT_COS
     return _sealed(
         envelope["store_id"], [_wrap(key, envelope["store_id"], "passphrase", new, cost), *kept], key
     )
+
+
+def change_recovery_code(text: str, secret: str, cost: Cost = DEFAULT_COST) -> tuple[str, str]:
+    """The envelope with a new recovery code, and the code; the old one opens nothing any more."""
+    key, envelope = open_envelope(text, secret), _read(text)
+    code = new_recovery_code()
+    kept = [w for w in envelope["wraps"] if w["kind"] != "recovery"]
+    wraps = [*kept, _wrap(key, envelope["store_id"], "recovery", code, cost)]
+    return _sealed(envelope["store_id"], wraps, key), code
 
 
 def read_envelope(path: Path) -> str:

@@ -168,6 +168,7 @@ def data_key(path: Path, passphrase: str | None) -> bytes | None:
             looks_random = len(set(file.read(4096))) > 200
         raise store_error("key.envelope_missing" if looks_random else "store.not_a_store", path=path.name)
     text = keys.read_envelope(envelope)
+    keys.check_envelope(text)  # nobody is asked for a passphrase that could open nothing
     if passphrase is None:
         raise store_error("store.needs_passphrase", path=path.name)
     return keys.open_envelope(text, passphrase)

@@ -341,10 +341,42 @@ class Store(StoreKept):
         Raises:
             StoreError: `key.wrong_passphrase`, `store.not_encrypted`.
         """
+        self._refuse_read_only()
+        envelope = keys.envelope_path(self.path)
+        keys.write_envelope(envelope, keys.change_passphrase(self._envelope(), secret, new, cost))
+
+    def new_recovery_code(self, secret: str, cost: keys.Cost = keys.DEFAULT_COST) -> str:
+        """Make a new recovery code; the old one opens nothing any more. It is given out here and kept nowhere.
+
+        Raises:
+            StoreError: `key.wrong_passphrase`, `store.not_encrypted`, `store.read_only`.
+        """
+        self._refuse_read_only()
+        text, code = keys.change_recovery_code(self._envelope(), secret, cost)
+        keys.write_envelope(keys.envelope_path(self.path), text)
+        return code
+
+    def opens_with(self, secret: str) -> bool:
+        """Whether a secret is the passphrase or the recovery code.
+
+        Raises:
+            StoreError: `store.not_encrypted`, or the envelope is missing or altered.
+        """
+        try:
+            return keys.open_envelope(self._envelope(), secret) == self._opened.key
+        except StoreError as error:
+            if error.message.key != "key.wrong_passphrase":
+                raise
+            return False
+
+    def _envelope(self) -> str:
         if not self.is_encrypted:
             raise store_error("store.not_encrypted", path=self.path.name)
-        envelope = keys.envelope_path(self.path)
-        keys.write_envelope(envelope, keys.change_passphrase(keys.read_envelope(envelope), secret, new, cost))
+        return keys.read_envelope(keys.envelope_path(self.path))
+
+    def _refuse_read_only(self) -> None:
+        if self.read_only:
+            raise store_error("store.read_only", path=self.path.name)
 
 
 def encoded(block: DeviceSamples) -> tuple[DraftChunk, ...]:

@@ -10,6 +10,7 @@ from app.deeds.help import HelpDeeds
 from app.deeds.log import LogDeeds
 from app.deeds.policy import PolicyDeeds
 from app.deeds.review import ReviewDeeds
+from app.deeds.store import StoreDeeds
 from app.deeds.view import ViewDeeds
 from app.deeds.ward import WardDeeds
 
@@ -23,6 +24,7 @@ class Doers:
     def __init__(self, window: MainWindow) -> None:
         self.file, self.log, self.ward = FileDeeds(window), LogDeeds(window), WardDeeds(window)
         self.review, self.policy = ReviewDeeds(window), PolicyDeeds(window)
+        self.store = StoreDeeds(window)
         self.episode, self.view, self.help = EpisodeDeeds(window), ViewDeeds(window), HelpDeeds(window)
 
     def of(self, menu: str) -> object:

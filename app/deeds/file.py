@@ -4,11 +4,13 @@ from __future__ import annotations
 
 import shutil
 import tempfile
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import partial
 from pathlib import Path
+from typing import TYPE_CHECKING
 
-from PySide6.QtWidgets import QDialog, QFileDialog, QInputDialog, QLineEdit
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QDialog, QFileDialog
 
 from app.clock import REAL, running_from
 from app.deeds.doer import Doer
@@ -18,11 +20,14 @@ from app.runner import Opener, Runner
 from app.session import Session, SessionModel
 from storage.store import Store
 
+if TYPE_CHECKING:
+    from app.dialogs.passphrase import NewStoreDialog, OpenStoreDialog
+
 
 @dataclass(frozen=True, slots=True)
 class _Opening:
     path: Path
-    passphrase: str | None
+    passphrase: str | None = field(repr=False)
     create: bool
 
 
@@ -32,11 +37,14 @@ class FileDeeds(Doer):
     _sample: Path | None = None
     _last: _Opening | None = None
     _then_take_in = False
+    _making: Path | None = None
+    _new_store: NewStoreDialog | None = None
+    _asking: OpenStoreDialog | None = None
 
     # stores
 
     def do_new_store(self) -> None:
-        """Ask where, make an empty store, open it."""
+        """Ask where and with which passphrase, make an empty store, open it."""
         chosen, _ = QFileDialog.getSaveFileName(
             self.window,
             self.tr("New store"),
@@ -44,7 +52,37 @@ class FileDeeds(Doer):
             self.tr("Stores (*.luffmark)"),
         )
         if chosen:
-            self.open_path(Path(chosen), create=True)
+            self.make_store(Path(chosen))
+        else:
+            self._then_take_in = False
+
+    def make_store(self, path: Path) -> QDialog:
+        """Ask for the passphrase of a new store, or for the word that it goes without; make it and open it."""
+        from app.dialogs.passphrase import NewStoreDialog
+
+        dialog = NewStoreDialog(path.name, self.window.theme, self.window)
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self._making = path
+        dialog.accepted.connect(self._make)
+        dialog.rejected.connect(self._not_made)
+        self._new_store = dialog
+        dialog.open()
+        return dialog
+
+    def _make(self) -> None:
+        if self._making is None or self._new_store is None:
+            return
+        path, passphrase = self._making, self._new_store.passphrase
+        self._making, self._new_store = None, None
+        self.open_path(path, passphrase=passphrase, create=True)
+        if passphrase is not None:
+            self.window.doers.store.show_code_once()
+        if self._then_take_in:
+            self._then_take_in = False
+            self.do_take_in()
+
+    def _not_made(self) -> None:
+        self._making, self._new_store, self._then_take_in = None, None, False
 
     def do_open_store(self) -> None:
         """Ask which, open it."""
@@ -97,31 +135,33 @@ class FileDeeds(Doer):
         self.window.close_model()
         self.window.show_model(SessionModel(session, Runner(opener), self.window))
 
-    def ask_passphrase(self) -> None:
-        """The store is encrypted: ask, and open it again."""
+    def ask_passphrase(self, said: str = "") -> None:
+        """The store is encrypted: ask, and open it again. `said`: what was wrong with the last try."""
+        from app.dialogs.passphrase import OpenStoreDialog
+
         last = self._last
         if last is None:
             return
-        text, given = QInputDialog.getText(
-            self.window,
-            self.tr("Passphrase"),
-            self.tr("Passphrase of {store}").format(store=last.path.name),
-            QLineEdit.EchoMode.Password,
-        )
-        if given and text:
-            self.open_path(last.path, passphrase=text)
-        else:
-            self.window.close_model()
-            self.window.show_first_page()
+        self.window.close_model()
+        self.window.show_first_page()
+        self._asking = OpenStoreDialog(last.path.name, said, self.window.theme, self.window)
+        self._asking.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self._asking.accepted.connect(self._passphrase_given)
+        self._asking.open()
+
+    def _passphrase_given(self) -> None:
+        if self._last is not None and self._asking is not None:
+            passphrase, self._asking = self._asking.passphrase, None
+            self.open_path(self._last.path, passphrase=passphrase)
 
     # files
 
     def do_take_in(self) -> None:
         """Ask which file, show what it holds, take it in when the person says so."""
         if self.window.model is None:
+            self._then_take_in = True
             self.do_new_store()
-            if self.window.model is None:
-                return
+            return
         chosen, _ = QFileDialog.getOpenFileName(
             self.window,
             self.tr("Take in a file"),

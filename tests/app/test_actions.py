@@ -12,6 +12,7 @@ from app.deeds.file import FileDeeds
 from app.deeds.help import HelpDeeds
 from app.deeds.log import LogDeeds
 from app.deeds.review import ReviewDeeds
+from app.deeds.store import StoreDeeds
 from app.deeds.view import ViewDeeds
 from app.deeds.ward import WardDeeds
 
@@ -21,6 +22,7 @@ SERVERS = {
     "ward": WardDeeds,
     "episode": EpisodeDeeds,
     "review": ReviewDeeds,
+    "store": StoreDeeds,
     "view": ViewDeeds,
     "help": HelpDeeds,
 }

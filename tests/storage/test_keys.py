@@ -106,6 +106,18 @@ def test_a_new_passphrase_keeps_data_and_recovery_code(make_store: Callable[...,
             assert again.recovery_code is None
 
 
+def test_a_new_recovery_code_takes_the_place_of_the_old_one(make_store: Callable[..., Store]) -> None:
+    store = make_store(encrypted=True)
+    old = store.recovery_code or ""
+    assert store.opens_with(old)
+    with pytest.raises(StoreError, match=r"key.wrong_passphrase"):
+        store.new_recovery_code("not the passphrase", CHEAP)
+    new = store.new_recovery_code(old, CHEAP)
+    assert [store.opens_with(s) for s in (PASSPHRASE, new, old)] == [True, True, False]
+    store.close()
+    Store.open(store.path, passphrase=new).close()
+
+
 def test_what_failed_to_open_is_told_apart(make_store: Callable[..., Store], tmp_path: Path) -> None:
     store = make_store(encrypted=True)
     store.put_layout("a", "b")

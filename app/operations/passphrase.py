@@ -1,0 +1,54 @@
+"""Operations on what opens an encrypted store: its passphrase and its recovery code."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+from app.operations.outcome import Outcome
+from core.record.instant import Instant
+
+if TYPE_CHECKING:
+    from storage.store import Store
+
+CHANGED, CODE_CHANGED = "passphrase changed", "recovery code changed"
+
+
+@dataclass(frozen=True, slots=True)
+class ChangeRequest:
+    """The passphrase now or the recovery code, the new passphrase, and whether the code is to be made anew."""
+
+    secret: str = field(repr=False)
+    new: str = field(repr=False)
+    new_code: bool = False
+
+
+def code_once(store: Store, who: str, now: Instant, request: None) -> Outcome[str]:
+    """The recovery code of a store that was made just now; "" for any other."""
+    return Outcome(store.recovery_code or "", store.head())
+
+
+def change(store: Store, who: str, now: Instant, request: ChangeRequest) -> Outcome[str]:
+    """Give the store a new passphrase, and a new recovery code where that is wanted; the code, else "".
+
+    The ledger keeps that it was done and by whom.
+
+    Raises:
+        StoreError: `key.wrong_passphrase`, `store.not_encrypted`, `store.read_only`.
+        RecordError: `passphrase.too_short`.
+    """
+    store.change_passphrase(request.secret, request.new)
+    code = store.new_recovery_code(request.new) if request.new_code else ""
+    receipt = store.record_event(CHANGED, person=who, now=now)
+    if code:
+        receipt = store.record_event(CODE_CHANGED, person=who, now=now)
+    return Outcome(code, receipt.last_seq)
+
+
+def opens(store: Store, who: str, now: Instant, request: str) -> Outcome[bool]:
+    """Whether a secret is the store's passphrase or recovery code.
+
+    Raises:
+        StoreError: `key.envelope_missing`, `key.envelope_altered`, `store.not_encrypted`.
+    """
+    return Outcome(store.opens_with(request), store.head())
