@@ -277,14 +277,18 @@ class LogStrip(QFrame):
         self._model.ask(entry.log_line, request, done=self._done, failed=self._failed)
 
     def _done(self, outcome: Outcome[Recorded]) -> None:
-        self._undo = [*self._undo, outcome.value][-MOST_UNDO:]
+        self.take(outcome.value)
+
+    def take(self, recorded: Recorded) -> None:
+        """Something was recorded, here or by a form: remember it for the undo, and say so."""
+        self.remember(recorded)
         self._become(
             State.TOLD,
             self._mark(
                 self.tr("Recorded for {label}.").format(label=self._label), self.tr("Ctrl+Z undoes it.")
             ),
         )
-        self.recorded.emit(outcome.value)
+        self.recorded.emit(recorded)
 
     def _failed(self, failure: Failure) -> None:
         self._become(

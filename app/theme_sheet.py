@@ -56,10 +56,19 @@ QToolButton[role="tab"]:hover {{ background: {wash}; }}
 QToolButton[role="tab"]:checked {{ background: {wash}; border-color: {accent}; font-weight: 600; }}
 QToolButton[role="tab"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {tab_1}px; }}
 QToolButton[role="why"] {{
-    padding: {g1}px {g2}px; min-height: 0px; font-size: {caption}px; border-color: {edge};
+    padding: 0px {g2}px; min-height: 0px; font-size: {caption}px; border-color: {edge};
 }}
 QPushButton[role="small"] {{ padding: {g1}px {g3}px; min-height: {choice}px; }}
 QPushButton[role="small"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
+QPushButton[role="step"] {{
+    padding: 0px; font-size: {title}px; font-weight: 600; min-height: {glove_button}px; min-width: {glove_button}px;
+}}
+QPushButton[role="step"]:focus {{ padding: 0px; }}
+QAbstractSpinBox[role="large"] {{ min-height: {glove_field}px; }}
+QPushButton[role="answer"] {{ padding: {g1}px {g3}px; min-height: {choice}px; }}
+QPushButton[role="answer"]:checked {{ background: {accent}; color: {on_accent}; border-color: {accent}; }}
+QPushButton[role="answer"]:focus {{ border: 2px solid {ink}; padding: {g1_1}px {g3_1}px; }}
+QAbstractSpinBox QLineEdit {{ border: 0; background: transparent; padding: 0px; min-height: 0px; }}
 QToolButton[role="choice"] {{
     border-color: transparent; background: transparent; padding: {g1}px {g3}px; min-height: {choice}px;
 }}
@@ -72,14 +81,13 @@ QPushButton[role="plain"]:checked, QToolButton[role="plain"]:checked {{
 }}
 QPushButton[role="plain"]:focus, QToolButton[role="plain"]:focus {{ border: 2px solid {accent}; }}
 
-QLineEdit, QPlainTextEdit, QTextEdit, QSpinBox, QDoubleSpinBox, QComboBox, QDateTimeEdit {{
+QLineEdit, QPlainTextEdit, QTextEdit, QAbstractSpinBox, QComboBox {{
     background: {raised}; border: 1px solid {edge}; border-radius: {radius}px;
     padding: {g1}px {g3}px; min-height: {target}px;
     selection-background-color: {accent}; selection-color: {on_accent};
 }}
-QLineEdit:focus, QPlainTextEdit:focus, QTextEdit:focus, QSpinBox:focus, QDoubleSpinBox:focus,
-QComboBox:focus, QDateTimeEdit:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
-QLineEdit:disabled, QSpinBox:disabled, QDoubleSpinBox:disabled, QComboBox:disabled {{
+QLineEdit:focus, QPlainTextEdit:focus, QTextEdit:focus, QAbstractSpinBox:focus, QComboBox:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
+QLineEdit:disabled, QAbstractSpinBox:disabled, QComboBox:disabled {{
     background: {sunken}; color: {ink_quiet}; border-color: {line};
 }}
 QComboBox::drop-down {{ border: 0; width: {g6}px; }}
@@ -174,5 +182,6 @@ def sheet(theme: Theme) -> str:
     sizes = {name: theme.px(getattr(t, name)) for name in ("caption", "body", "emphasis", "title", "display")}
     colours = {name: getattr(c, name) for name in _SURFACES + _INKS}
     targets = {"target": theme.px(24), "choice": theme.px(20), "menu": theme.px(10)}
+    targets |= {"glove_button": theme.px(44) - 2, "glove_field": theme.px(44) - 2 - 2 * theme.px(4)}
     targets |= {"menu_side": theme.px(8), "tab": theme.px(5), "tab_1": theme.px(5) - 1}
     return _SHEET.format(radius=8, bar=3, **targets, **distances, **inner, **sizes, **colours)

@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-from app.deeds.doer import Doer
-from app.log_strip import LogStrip
+from app.deeds.forms import FormDeeds
 from app.operations import episode as episode_operations
 from app.operations import flag as flag_operations
 from app.operations.entry import Recorded
@@ -13,15 +12,8 @@ from app.ward.lane_words import strongest_flag
 from core.judgement.shapes import FlagFigure
 
 
-class LogDeeds(Doer):
+class LogDeeds(FormDeeds):
     """Serves the menu Log."""
-
-    @property
-    def strip(self) -> LogStrip:
-        """The strip; there only where a store is open."""
-        if self.window.strip is None:
-            raise RuntimeError("no store is open: this action is greyed then")
-        return self.window.strip
 
     def do_focus_strip(self) -> None:
         """Go to the line."""

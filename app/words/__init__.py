@@ -28,10 +28,20 @@ def templates() -> Mapping[str, str]:
     Raises:
         ValueError: two catalogues name the same key.
     """
-    from app.words import exchange, findings, judgements, names, refusals, responses, surroundings, tables
+    from app.words import (
+        exchange,
+        findings,
+        forms,
+        judgements,
+        names,
+        refusals,
+        responses,
+        surroundings,
+        tables,
+    )
 
     found: dict[str, str] = {}
-    for catalogue in (refusals, surroundings, findings, responses, judgements, names, exchange, tables):
+    for catalogue in (refusals, surroundings, findings, responses, judgements, names, exchange, tables, forms):
         twice = found.keys() & catalogue.TEMPLATES.keys()
         if twice:
             raise ValueError(f"message keys with two templates: {', '.join(sorted(twice))}")
