@@ -159,7 +159,9 @@ class MainWindow(QMainWindow):
         if self.model is None:
             return
         bar = self.menuBar()
-        menus = sum(bar.actionGeometry(action).width() for action in bar.actions()) + self.theme.px(20)
+        # measured by their words: a menu that the bar pushed out has no geometry to ask for
+        words = (action.text().replace("&", "") for action in bar.actions())
+        menus = sum(bar.fontMetrics().horizontalAdvance(word) + self.theme.px(28) for word in words)
         fits = menus + self.top.sizeHint().width() <= self.width()
         if fits and bar.cornerWidget() is not self.top:
             bar.setCornerWidget(self.top)
