@@ -24,6 +24,7 @@ def prompt_responder(seed: int, last: int) -> Case:
     s.gas(d.minute(330, 15), NURSE)
     s.vitals([12, 60, 90], NURSE)
     s.vitals(hourly(150, last), NURSE)
+    s.event(232, "skin_check", NURSE, "intact")
     return make_case("prompt_responder", seed, p, copd_person(d), s)
 
 
@@ -143,6 +144,8 @@ def obesity_hypoventilation(seed: int, last: int) -> Case:
         sex, round(d.about(162 if sex == "female" else 172, 5, 150, 184)), "obesity hypoventilation", False, "none",
         (88, 92), "full", "for resuscitation", None,
     )  # fmt: skip
+    s.event(228, "skin_check", NURSE, "intact")
+    s.event(442, "skin_check", NURSE, "intact")
     return make_case("obesity_hypoventilation", seed, p, person, s)
 
 
@@ -206,6 +209,7 @@ def kpa_ward(seed: int, last: int) -> Case:
     s.gas(d.minute(350, 10), NURSE)
     s.vitals([15, 60], NURSE)
     s.vitals(hourly(120, last), NURSE)
+    s.event(226, "skin_check", NURSE, "intact")
     return make_case("kpa_ward", seed, p, copd_person(d), s)
 
 
@@ -235,6 +239,8 @@ def already_running(seed: int, last: int) -> Case:
         sex, round(d.about(163 if sex == "female" else 176, 6, 150, 190)), "neuromuscular", True, "nocturnal BPAP",
         (88, 92), "no intubation", "not for resuscitation", None,
     )  # fmt: skip
+    s.event(215, "skin_check", NURSE, "intact")
+    s.event(430, "skin_check", NURSE, "intact")
     return make_case("already_running", seed, p, person, s)
 
 
@@ -257,4 +263,6 @@ def stable(seed: int, last: int) -> Case:
     s.event(360, "checked_no_change", THERAPIST)
     s.vitals([15, 60], NURSE)
     s.vitals(hourly(120, last), NURSE)
+    s.event(236, "skin_check", NURSE, "intact")
+    s.event(436, "skin_check", NURSE, "intact")
     return make_case("stable", seed, p, copd_person(d), s)
