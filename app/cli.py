@@ -199,6 +199,13 @@ def _keeping(command: Command) -> None:
     mapping.add_argument("what", choices=("list", "show", "propose", "put", "forget"))
     mapping.add_argument("subject", nargs="?", help="a file (propose, put) or a name (show, forget)")
     mapping.add_argument("--name", default="", help="the name to keep it by")
+    people = command("people", "who may sign in: list, add, retire, give a new PIN")
+    people.add_argument("what", choices=("list", "add", "retire", "pin"))
+    people.add_argument("initials", nargs="?", default="", help="whom it concerns")
+    people.add_argument("--lead", action="store_true", help="add as ward lead: policy, people, restore, removal")
+    people.add_argument("--new-pin-fd", type=int, metavar="N", help="read the new PIN from this descriptor")
+    people.add_argument("--recovery-fd", type=int, metavar="N",
+                        help="pin: the store's recovery code, where every ward lead has forgotten theirs")  # fmt: skip
     policy = command("policy", "show the policy in force, or check or put in force a policy file")
     policy.add_argument("what", choices=("show", "check", "put", "history"))
     policy.add_argument("file", nargs="?", type=Path)
@@ -211,6 +218,7 @@ def _common() -> argparse.ArgumentParser:
     group.add_argument("--store", type=Path, metavar="PATH", help="the store's file (default: your data folder)")
     group.add_argument("--by", metavar="INITIALS", help="who does it (default: your login name)")
     group.add_argument("--passphrase-fd", type=int, metavar="N", help="read the passphrase from this descriptor")
+    group.add_argument("--pin-fd", type=int, metavar="N", help="read the PIN of --by from this descriptor")
     group.add_argument("--json", action="store_true", help="answer in JSON")
     group.add_argument("--gas-unit", choices=("mmHg", "kPa"), help="unit of gas pressures in text")
     group.add_argument("--zone", metavar="ZONE", help="time zone of wall-clock times (default: this computer's)")

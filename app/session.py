@@ -77,6 +77,7 @@ class Session:
     is_demo: bool = False
     read_only: bool = False
     encrypted: bool | None = None
+    has_people: bool = False
     layout_revision: int = 0
     notices: tuple[Message, ...] = ()
     """What a person should know of the store: why it is read-only, a policy that cannot be read."""
@@ -199,7 +200,8 @@ class SessionModel(QObject):
         names_by_policy.use(facts.policy)
         self._session = replace(self._session, head=outcome.head, policy=facts.policy,
                                 read_only=facts.read_only, layout_revision=facts.layout_revision,
-                                encrypted=facts.encrypted, notices=facts.notices)  # fmt: skip
+                                encrypted=facts.encrypted, notices=facts.notices,
+                                has_people=facts.has_people)  # fmt: skip
         self.changed.emit(Changed(frozenset({What.STORE, What.POLICY, What.RECORD}), facts.episodes))
 
     def _found(self, outcome: Outcome[store_operations.Changes]) -> None:
@@ -215,5 +217,5 @@ class SessionModel(QObject):
         self._session = replace(known, head=max(outcome.head, known.head),
                                 policy=found.policy or known.policy,
                                 notices=known.notices if found.policy is None else found.notices,
-                                layout_revision=found.layout_revision)  # fmt: skip
+                                layout_revision=found.layout_revision, has_people=found.has_people)  # fmt: skip
         self.changed.emit(Changed(frozenset(what), found.episodes))

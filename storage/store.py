@@ -38,6 +38,8 @@ from storage.draft_batch import (
 from storage.engine import BUSY_SECONDS, fold_journal
 from storage.errors import StoreError, store_error
 from storage.ledger import append_batch, replaced_entries
+from storage.people import PersonEvent
+from storage.person_events import person_events
 from storage.rules import Replaced, is_device_channel
 from storage.store_kept import StoreKept
 
@@ -203,10 +205,19 @@ class Store(StoreKept):
                 receipts.append(receipt)
         return receipts
 
-    def record_event(self, event: str, *, person: str, now: Instant, detail: str = "") -> Receipt:
-        """Chain what a person did that is no entry: a sign-in, a print, an export."""
-        draft = DraftBatch(person, event, events=(DraftEvent(person, event, detail),))
+    def record_event(
+        self, event: str, *, person: str, now: Instant, detail: str = "", by: str | None = None
+    ) -> Receipt:
+        """Chain what a person did that is no entry: a sign-in, a print, an export. `by` where another did it."""
+        draft = DraftBatch(person if by is None else by, event, events=(DraftEvent(person, event, detail),))
         return self.append_drafts((draft,), (now,))[0]
+
+    def person_events(
+        self, events: Sequence[str] = (), *, person: str | None = None, newest: int | None = None
+    ) -> tuple[PersonEvent, ...]:
+        """What people did that is no entry, in order: of some kinds, of one person, only the newest."""
+        with self._opened.database.read() as connection:
+            return person_events(connection, events, person, newest)
 
     def erase_episode(self, episode: str, *, reason: str, by: str, now: Instant) -> Receipt:
         """Remove every entry and sample of an episode for good; their digests stay in the chain.

@@ -34,6 +34,7 @@ class Context:
     json: bool
     gas_unit: str
     zone: str
+    pin_fd: int | None = None
 
     @classmethod
     def of(cls, args: argparse.Namespace) -> Context:
@@ -43,6 +44,7 @@ class Context:
             given or default_store(), given is not None, getattr(args, "by", None) or _login(),
             getattr(args, "passphrase_fd", None), getattr(args, "json", False),
             getattr(args, "gas_unit", None) or "mmHg", getattr(args, "zone", None) or "",
+            getattr(args, "pin_fd", None),
         )  # fmt: skip
 
     def now(self) -> Instant:
@@ -72,20 +74,46 @@ class Context:
 
     def passphrase(self) -> str | None:
         """The passphrase from its descriptor, its line end taken off; None where none was given."""
-        if self.passphrase_fd is None:
-            return None
-        with os.fdopen(os.dup(self.passphrase_fd), "r", encoding="utf-8") as stream:
-            return stream.readline().rstrip("\r\n")
+        return line_of(self.passphrase_fd)
 
-    def open(self, *, read_only: bool = False) -> Store:
-        """The store, opened. What a person should know of how it opened goes to stderr."""
+    def open(self, *, read_only: bool = False, proven: bool = False) -> Store:
+        """The store, opened. What a person should know of how it opened goes to stderr. To write into a store whose
+        people sign in, a person gives initials and PIN, unless another proof is checked after (`proven`).
+
+        Raises:
+            RecordError: `people.*`.
+        """
         from app.words import sentence
         from storage.store import Store
 
         store = Store.open(self.store_path, passphrase=self.passphrase(), read_only=read_only)
         for notice in (*store.notices, *_policies_passed_over(store)):
             remark(sentence(notice, self.reader()))
+        if not (read_only or proven):
+            try:
+                self._prove(store)
+            except BaseException:
+                store.close()
+                raise
         return store
+
+    def _prove(self, store: Store) -> None:
+        """Nobody writes as somebody else where people have PINs."""
+        from core.record.message import refuse
+        from storage import people
+
+        known = people.of_store(store)
+        if all(p.retired for p in known.values()):
+            return
+        if self.by not in known:
+            people.active(known, f"{self.by} ")
+            raise refuse("people.unknown", value=self.by, accepted=self.by.upper())
+        pin = line_of(self.pin_fd)
+        if pin is None and sys.stdin.isatty():
+            pin = getpass.getpass(f"PIN of {self.by}: ")
+        if pin is None:
+            raise refuse("people.pin_needed")
+        people.sign_in(store, self.by, pin, self.now())
 
     def open_or_create(self, *, imported: bool = False) -> Store:
         """The store, made first where there is none; a new encrypted one tells its recovery code once."""
@@ -96,7 +124,8 @@ class Context:
         self.store_path.parent.mkdir(parents=True, exist_ok=True)
         store = Store.create(self.store_path, passphrase=self.passphrase(), now=self.now(), by=self.by,
                              imported=imported)  # fmt: skip
-        remark(f"New store: {self.store_path}")
+        unprotected = "" if store.is_encrypted else ", not encrypted: who gets at the file can read it"
+        remark(f"New store: {self.store_path}{unprotected}")
         if not imported:  # recording times of files stand only in a store that holds nothing yet
             self.copy_policy(store)
         if store.recovery_code:
@@ -130,6 +159,14 @@ def _policies_passed_over(store: Store) -> tuple[Message, ...]:
         return ()
     use(found.policy)
     return found.passed_over
+
+
+def line_of(descriptor: int | None) -> str | None:
+    """One line of a descriptor, its line end taken off; None where none was given."""
+    if descriptor is None:
+        return None
+    with os.fdopen(os.dup(descriptor), "r", encoding="utf-8") as stream:
+        return stream.readline().rstrip("\r\n")
 
 
 def default_store() -> Path:

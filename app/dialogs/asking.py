@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import (
     QDialog,
     QDialogButtonBox,
@@ -58,6 +59,16 @@ class AskingDialog(QDialog):
         self._column.setStretchFactor(self.body, 1)
         self._column.setStretch(3, 0)
 
+    def showEvent(self, event: QShowEvent) -> None:
+        """Tall enough for every wrapped line: a form that cuts its words says something else."""
+        super().showEvent(event)
+        self._grow()
+
+    def _grow(self) -> None:
+        needed = self._column.totalHeightForWidth(self.width())
+        if needed > self.height():
+            self.resize(self.width(), needed)
+
     def submit(self) -> None:
         """What the accepting button does; the usual one closes the dialog."""
         self.accept()
@@ -65,4 +76,5 @@ class AskingDialog(QDialog):
     def refuse(self, text: str) -> None:
         """Say what is wrong."""
         self.wrong.setText(text)
+        self._grow()
         self.go.setEnabled(True)

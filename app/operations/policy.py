@@ -7,6 +7,7 @@ from functools import lru_cache
 from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
+from app.operations.people import require_lead
 from core.judgement.policy import Policy, policy_hash, read_policy, shipped_policy, shipped_text
 from core.judgement.policy_check import ERROR, check
 from core.record.instant import Instant
@@ -112,8 +113,10 @@ def put(store: Store, who: str, now: Instant, request: str) -> Outcome[Policy]:
     """Put a policy's TOML text in force. Putting an earlier text back is the undo.
 
     Raises:
-        RecordError: `policy.*`, the first fault of a text that is no usable policy; nothing is changed.
+        RecordError: `people.lead_needed`; `policy.*`, the first fault of a text that is no usable policy; nothing
+            is changed.
     """
+    require_lead(store, who)
     faults = [f for f in check(request).findings if f.kind == ERROR]
     if faults:
         raise RecordError(faults[0].message)

@@ -10,6 +10,7 @@ from app.operations.policy import found as policy_found
 from core.judgement.policy import Policy
 from core.record.instant import Instant
 from core.record.message import Message
+from storage import people
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -29,6 +30,8 @@ class StoreFacts:
     notices: tuple[Message, ...]
     printed_head: str
     layout_revision: int = 0
+    has_people: bool = False
+    """Whether people sign in with a PIN."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,6 +43,7 @@ class Changes:
     layout_revision: int = 0
     notices: tuple[Message, ...] = ()
     """What a person should know of the store, where the policy was replaced."""
+    has_people: bool = False
 
 
 def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[StoreFacts]:
@@ -49,6 +53,7 @@ def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[Sto
     facts = StoreFacts(
         frozenset(store.episode_keys()), in_force.policy, store.read_only, store.is_encrypted,
         (*store.notices, *in_force.passed_over), store.printed_head(), store.changes_since(head).layout_revision,
+        _has_people(store),
     )  # fmt: skip
     return Outcome(facts, head)
 
@@ -57,10 +62,16 @@ def changes(store: Store, who: str, now: Instant, request: int) -> Outcome[Chang
     """What was committed after the sequence `request`."""
     found = store.changes_since(request)
     if not found.policy_changed:
-        return Outcome(Changes(found.episodes, None, found.layout_revision), found.head)
+        plain = Changes(found.episodes, None, found.layout_revision, has_people=_has_people(store))
+        return Outcome(plain, found.head)
     in_force = policy_found(store)
     notices = (*store.notices, *in_force.passed_over)
-    return Outcome(Changes(found.episodes, in_force.policy, found.layout_revision, notices), found.head)
+    made = Changes(found.episodes, in_force.policy, found.layout_revision, notices, _has_people(store))
+    return Outcome(made, found.head)
+
+
+def _has_people(store: Store) -> bool:
+    return any(not p.retired for p in people.of_store(store).values())
 
 
 def takes_writing(store: Store, who: str, now: Instant, request: None) -> Outcome[bool]:

@@ -34,6 +34,7 @@ def templates() -> Mapping[str, str]:
         forms,
         judgements,
         names,
+        people,
         refusals,
         responses,
         surroundings,
@@ -41,7 +42,8 @@ def templates() -> Mapping[str, str]:
     )
 
     found: dict[str, str] = {}
-    for catalogue in (refusals, surroundings, findings, responses, judgements, names, exchange, tables, forms):
+    catalogues = refusals, surroundings, findings, responses, judgements, names, people, exchange, tables, forms
+    for catalogue in catalogues:
         twice = found.keys() & catalogue.TEMPLATES.keys()
         if twice:
             raise ValueError(f"message keys with two templates: {', '.join(sorted(twice))}")
