@@ -66,7 +66,8 @@ def test_a_change_of_settings_by_keys_is_shown_recorded_and_undone(qtbot, window
     assert [len(record(window).number(k)) for k in ("epap", "fio2")] == [2, 1]  # what did not change is not logged
     assert "Recorded for Bed 7" in window.strip.plain()
     window.activateWindow()  # off screen no window manager does it
-    qtbot.keyClick(window, Key.Key_Z, Mod.ControlModifier)
+    until(qtbot, window.pages.ward.lanes.hasFocus)
+    qtbot.keyClick(window.pages.ward.lanes, Key.Key_Z, Mod.ControlModifier)
     until(qtbot, lambda: record(window).number("ipap").v[-1] == 18)
 
 
