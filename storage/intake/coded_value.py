@@ -13,7 +13,7 @@ from core.record.reading import Reading, read_value
 from storage.codes import Coding, unit_of_ucum
 
 _WITH_COMPARATOR = re.compile(r"\s*(<=|>=|<|>|~)")
-_SELF_EVIDENT = frozenset({"pH", "fraction"})
+SELF_EVIDENT = frozenset({"pH", "fraction"})
 """Units that a value itself tells apart: 7.4 is no nmol/L, 35 no fraction."""
 
 
@@ -46,7 +46,7 @@ def coded_reading(channel: Channel, text: str, unit_code: str, *, is_ucum: bool)
         return read_value(channel, text)
     refuse_limit(channel, text)
     if not unit_code.strip():
-        if len(channel.units) > 1 and channel.unit not in _SELF_EVIDENT:
+        if len(channel.units) > 1 and channel.unit not in SELF_EVIDENT:
             accepted = ", ".join(u.name for u in channel.units)
             raise refuse("unit.missing", channel=channel.key, value=text[:40], accepted=accepted)
         return read_value(channel, text)

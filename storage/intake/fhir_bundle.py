@@ -66,6 +66,11 @@ class Holdings:
                 return self.panel_times[reference]
         return None
 
+    def members_elsewhere(self, observation: Json) -> int:
+        """How many members a panel names that are not in the file."""
+        references = [text(m, "reference") for m in objects(observation, "hasMember")]
+        return sum(self.followed(r, observation) is None for r in references)
+
     def identifiers(self, observation: Json) -> tuple[list[str], str]:
         """The identifiers of an observation's subject, and the kind of resource the subject is."""
         subject = child(observation, "subject")

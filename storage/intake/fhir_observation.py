@@ -66,6 +66,10 @@ class ObservationRows:
 
     def read(self, found: Found) -> Iterator[tuple[Result, str]]:
         """The results of an observation, each with the sample site it names."""
+        elsewhere = self._holdings.members_elsewhere(found.resource)
+        if elsewhere:
+            message = Message("fhir.members_elsewhere", {"count": elsewhere})
+            self._aside.put(found.number, "hasMember", _name(found.resource), message)
         parts = list(self._parts(found))
         if not parts:
             return

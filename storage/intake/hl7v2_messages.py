@@ -55,7 +55,7 @@ class MessageReader:
         steady = SteadyFile.begin(self._path)
         held: list[bytes] = []
         held_size = first = 0
-        for line, segment in self._segments(steady.size):
+        for line, segment in self._segments(steady):
             if segment.startswith(b"MSH"):
                 if held:
                     yield _message(held, first)
@@ -74,7 +74,7 @@ class MessageReader:
         yield _message(held, first)
         steady.check()
 
-    def _segments(self, total: int) -> Iterator[tuple[int, bytes]]:
+    def _segments(self, steady: SteadyFile) -> Iterator[tuple[int, bytes]]:
         """Segments with their line; marks of the transport (VT, FS) and empty lines are left out."""
         carried, line = b"", 0
         with self._path.open("rb") as file:
@@ -84,8 +84,9 @@ class MessageReader:
                 fresh = file.read(BLOCK)
                 self._hash.update(fresh)
                 self.size += len(fresh)
+                steady.check_read(self.size)
                 if self._progress is not None:
-                    self._progress(self.size, total)
+                    self._progress(self.size, steady.size)
                 data = carried + fresh
                 if fresh and data.endswith(b"\r"):  # its LF may come with the next block
                     data, tail = data[:-1], b"\r"
@@ -110,7 +111,7 @@ def _message(segments: list[bytes], line: int) -> RawMessage:
         if b"\x00" in data:
             raise unreadable(line, "NUL", "file.binary", accepted="text")
         return RawMessage(data.decode("ascii"), line)
-    fields = segments[0].split(segments[0][3:4])
+    fields = segments[0].split(segments[0][3:4] or b"|")
     claimed = fields[_CHARACTER_SET].decode("ascii", "replace") if len(fields) > _CHARACTER_SET else ""
     encoding = _ENCODINGS.get(claimed.split("~")[0].strip().upper())
     if encoding is None:

@@ -62,6 +62,7 @@ class _Reading:
             fast = DeviceRows(columns, self._spool, self._now + CLOCK_LEAD)
             for block in _chained(rest, blocks):
                 self._take(block, columns, fast)
+                steady.check_read(self._reader.size)
             steady.check()
         except UnreadableFileError as error:
             self._findings.refuse(error.line, "", error.value, error.message)

@@ -12,7 +12,7 @@ from core.record.message import Message, RecordError, Value
 from core.record.units import MMHG_GAS
 from storage.intake.mapping import ColumnUse, LongUse, Mapping, TimeUse, channels_of
 from storage.intake.table import Table
-from storage.intake.table_times import fitting_orders, has_offset
+from storage.intake.table_times import all_have_offsets, fitting_orders
 
 _MORE: dict[str, tuple[str, ...]] = {
     "ph": ("ph art", "ph a", "aph", "arterial ph"),
@@ -102,9 +102,9 @@ def _time(table: Table, zone: str) -> tuple[TimeUse, bool]:
         values = table.column(dated[0])
         if all(_EPOCH_TEXT.fullmatch(v.partition(".")[0]) for v in values):
             return TimeUse(dated[0], order="epoch_s" if len(values[0].partition(".")[0]) == 10 else "epoch_ms"), True
-        orders = fitting_orders(list(values))
+        orders = fitting_orders(values)
         order = orders[0] if len(orders) == 1 else ""
-        offsets = bool(orders) and all(has_offset(v, orders[0]) for v in values)
+        offsets = bool(orders) and all_have_offsets(values, orders[0])
         return TimeUse(dated[0], order=order, zone="" if offsets else zone), offsets
     dates = [n for n in table.header if table.column(n) and all(map(_DATE_TEXT.fullmatch, table.column(n)))]
     clocks = [n for n in table.header if table.column(n) and all(map(_CLOCK_TEXT.fullmatch, table.column(n)))]
@@ -119,7 +119,7 @@ def _is_time(values: tuple[str, ...]) -> bool:
     if not values:
         return False
     epoch = all(_EPOCH_TEXT.fullmatch(v.partition(".")[0]) for v in values)
-    return epoch or bool(fitting_orders(list(values)))
+    return epoch or bool(fitting_orders(values))
 
 
 def _named(table: Table, names: tuple[str, ...], taken: set[str]) -> str:
@@ -137,7 +137,13 @@ def _long(table: Table, taken: set[str]) -> LongUse | None:
     if not any(names.values()):
         return None
     unit = _named(table, _UNIT, taken | {value, channel})
-    units = {word: _unit(CHANNELS[key], _plain(word)[1]) for word, key in names.items() if key}
+    read = list(zip(table.column(channel), table.column(value), strict=False))
+    units = {}
+    for word, key in names.items():
+        if key:
+            seen = tuple(v for w, v in read if w == word)
+            units[word] = _unit(CHANNELS[key], _plain(word)[1]) or _evident_unit(CHANNELS[key], seen)
+    units = {} if unit else units
     return LongUse(channel, value, unit, names, {k: v for k, v in units.items() if v})
 
 
@@ -179,8 +185,8 @@ def _evident_unit(known: Channel, values: tuple[str, ...]) -> str:
         if all(0.2 <= n <= 1.0 for n in numbers):
             return "fraction"
         return "%" if all(n >= 20 for n in numbers) else ""
-    if known.unit == "pH" and numbers and all(6.5 <= n <= 8.0 for n in numbers):
-        return "pH"
+    if known.unit == "pH" and 2 * sum(6.5 <= n <= 8.0 for n in numbers) > len(numbers):
+        return "pH"  # no concentration in nmol/L lies there: a wrong value among them is refused by its line
     return ""
 
 

@@ -11,12 +11,11 @@ from __future__ import annotations
 import io
 import re
 import zipfile
-import zlib
 from dataclasses import dataclass, field
 from typing import BinaryIO
 from xml.parsers import expat
 
-from storage.intake.findings import unreadable
+from storage.intake.findings import UnreadableFileError, unreadable
 
 MOST_BYTES = 128 << 20
 """Unpacked bytes of all parts together."""
@@ -30,7 +29,6 @@ _WANTED = re.compile(
     r"\[Content_Types\]\.xml|_rels/.*|xl/workbook\.xml|xl/_rels/.*|xl/sharedStrings\.xml|xl/styles\.xml|"
     r"xl/worksheets/.*|mimetype|META-INF/manifest\.xml|content\.xml|styles\.xml|settings\.xml|meta\.xml|xl/tables/.*"
 )
-_BROKEN = (zipfile.BadZipFile, zlib.error, NotImplementedError, EOFError, OSError, ValueError, RuntimeError)
 
 
 @dataclass(slots=True)
@@ -63,23 +61,25 @@ def guarded_copy(file: BinaryIO) -> tuple[io.BytesIO, Scan]:
                 if part.filename.endswith((".xml", ".rels")):
                     _look(part.filename, data, scan)
                 out.writestr(part.filename, data)
-    except _BROKEN as error:
+    except UnreadableFileError:
+        raise
+    except Exception as error:  # the archive module raises whatever the slicing of a damaged archive meets
         raise unreadable(0, "", "sheet.damaged", detail=type(error).__name__, accepted="XLSX or ODS") from None
     copy.seek(0)
     return copy, scan
 
 
-def _unpacked(source: zipfile.ZipFile, part: zipfile.ZipInfo, most: int) -> bytes:
+def _unpacked(source: zipfile.ZipFile, part: zipfile.ZipInfo, most: int) -> bytearray:
     made = bytearray()
     with source.open(part) as stream:
         while block := stream.read(_BLOCK):
             made += block
             if len(made) > most:
                 raise unreadable(0, part.filename[:80], "sheet.too_large", accepted=MOST_BYTES)
-    return bytes(made)
+    return made
 
 
-def _look(name: str, data: bytes, scan: Scan) -> None:
+def _look(name: str, data: bytearray, scan: Scan) -> None:
     """Read one part of XML by events; nothing of it is built in memory."""
     parser = expat.ParserCreate()
     watch = _Watch(name, scan)
@@ -90,7 +90,7 @@ def _look(name: str, data: bytes, scan: Scan) -> None:
     parser.buffer_text = True
     try:
         for at in range(0, len(data), _BLOCK):
-            parser.Parse(data[at : at + _BLOCK], False)
+            parser.Parse(bytes(data[at : at + _BLOCK]), False)
         parser.Parse(b"", True)
     except expat.ExpatError as error:
         raise unreadable(0, name[:80], "sheet.damaged", detail=expat.errors.messages[error.code],

@@ -30,6 +30,15 @@ class SteadyFile:
         """
         return cls(path, *_facts(path))
 
+    def check_read(self, count: int) -> None:
+        """Say so where more was read than the file held: one that grows as fast as it is read has no end.
+
+        Raises:
+            UnreadableFileError: `file.changed`.
+        """
+        if count > self.size:
+            raise unreadable(0, self.path.name, "file.changed", accepted="a file that nothing writes to")
+
     def check(self) -> None:
         """Say so where the file has changed since.
 

@@ -79,8 +79,14 @@ def open_table(path: Path | str, *, sheet: str = "", encoding: str = "", header_
         dialect = text_dialect(head, is_whole=whole)
     if header_at:
         dialect = replace(dialect, header_line=header_at)
-    block = next(iter(TextTable(file, dialect)), RowBlock([], []))
-    return _begun(file, dialect, block.rows[: FIRST_ROWS + 1], list(block.lines))
+    rows: list[list[str]] = []
+    lines: list[int] = []
+    for block in TextTable(file, dialect):
+        rows += block.rows if block.columns is None else [list(row) for row in zip(*block.columns, strict=True)]
+        lines += block.lines
+        if len(rows) > FIRST_ROWS:
+            break
+    return _begun(file, dialect, rows[: FIRST_ROWS + 1], lines)
 
 
 def _open_sheet(file: Path, sheet: str, header_at: int) -> Table:

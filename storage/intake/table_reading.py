@@ -17,7 +17,7 @@ from storage.intake.table import Table, open_table
 from storage.intake.table_dialect import column_names
 from storage.intake.table_rows import Answers, TableRows
 from storage.intake.table_text import RowBlock
-from storage.intake.table_times import has_offset
+from storage.intake.table_times import all_have_offsets
 from storage.store import Store
 
 Progress = Callable[[int, int], None]
@@ -72,8 +72,7 @@ def check_complete(table: Table, mapping: Mapping, answers: Answers) -> None:
     for column in named:
         if column and column not in table.header:
             raise refuse("mapping.column_gone", column=column, accepted=" | ".join(table.header)[:400])
-    times = table.column(mapping.time.date)
-    offsets = bool(times) and all(has_offset(t, mapping.time.order) for t in times)
+    offsets = all_have_offsets(table.column(mapping.time.date), mapping.time.order)
     asked = open_questions(mapping, episode_given=bool(answers.episode), has_offsets=offsets)
     if asked:
         raise RecordError(asked[0])

@@ -15,6 +15,7 @@ from core.record.instant import Instant
 from core.record.message import Message, RecordError, Value, refuse
 from core.record.samples import Flags, Times
 from storage.draft_batch import DraftEntry
+from storage.intake.coded_value import SELF_EVIDENT
 from storage.intake.findings import CLOCK_LEAD, Findings
 from storage.intake.held_settings import SettingChanges
 from storage.intake.mapping import Mapping, is_sampled
@@ -170,7 +171,8 @@ class TableRows:
         """A column whose unit the table itself names: it must be one of the channel's, and must be there."""
         if known.kind is Kind.NUMBER:
             try:
-                unit = known.unit_named(unit).name if unit or len(known.units) == 1 else _no_unit(known)
+                given = unit or (known.unit if len(known.units) == 1 or known.unit in SELF_EVIDENT else "")
+                unit = known.unit_named(given).name if given else _no_unit(known)
             except RecordError as error:
                 for line, text in zip(rows.lines.tolist(), texts, strict=True):
                     if not is_absent(text):

@@ -62,7 +62,7 @@ class TextTable:
     def __iter__(self) -> Iterator[RowBlock]:
         steady = SteadyFile.begin(self._path)
         line = 0
-        for text in self._texts(steady.size):
+        for text in self._texts(steady):
             for part in _begin_and_rest(text) if not self._width else (text,):
                 block, line = self._plain_block(part, line) or self._block(part, line)
                 if block.rows and not self._width:
@@ -109,7 +109,7 @@ class TextTable:
             raise unreadable(start + 1, shown, "row.quotes", detail=str(error)) from None
         return RowBlock(rows, numbers), before + len(lines)
 
-    def _texts(self, total: int) -> Iterator[str]:
+    def _texts(self, steady: SteadyFile) -> Iterator[str]:
         """Texts of whole rows with LF line ends."""
         decoder = codecs.getincrementaldecoder(self._dialect.encoding)("strict")
         carried, cut, lines = "", False, 0
@@ -120,8 +120,9 @@ class TextTable:
                 data = file.read(BLOCK)
                 self._hash.update(data)
                 self.size += len(data)
+                steady.check_read(self.size)
                 if self._progress is not None:
-                    self._progress(self.size, total)
+                    self._progress(self.size, steady.size)
                 try:
                     fresh = decoder.decode(data, final=not data)
                 except UnicodeDecodeError as error:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 from datetime import UTC, datetime
 from functools import lru_cache
 
@@ -100,23 +101,34 @@ def _made(part: dict[str, str | None]) -> datetime:
     return datetime.fromisoformat(f"{moment.isoformat()}{offset[:3]}:{offset[-2:]}")
 
 
-def fitting_orders(texts: list[str]) -> tuple[str, ...]:
-    """The ways in which every text can be read as a time; more than one where day and month may be swapped.
+def fitting_orders(texts: Sequence[str]) -> tuple[str, ...]:
+    """The ways in which texts can be read as times; more than one where day and month may be swapped.
+
+    A text that no way reads is passed over, as long as most are read: it will be refused by its line.
 
     >>> fitting_orders(["03/04/2026 10:00"]), fitting_orders(["13/04/2026 10:00"])
     (('dmy', 'mdy'), ('dmy',))
     """
-    found = []
-    for order in ("iso", "ymd", "dmy", "mdy"):
-        if order == "ymd" and "iso" in found:
-            continue
-        try:
-            for text in texts:
-                _moment(text.strip(), order)
-        except RecordError:
-            continue
-        found.append(order)
-    return tuple(found) if texts else ()
+    fits = {order: {t for t in texts if _fits(t, order)} for order in ("iso", "ymd", "dmy", "mdy")}
+    most = max(map(len, fits.values()))
+    if most * 2 <= len(set(texts)):
+        return ()
+    found = [order for order, read in fits.items() if len(read) == most]
+    return tuple(o for o in found if o != "ymd" or "iso" not in found)
+
+
+def _fits(text: str, order: str) -> bool:
+    try:
+        _moment(text.strip(), order)
+    except RecordError:
+        return False
+    return True
+
+
+def all_have_offsets(texts: Sequence[str], order: str) -> bool:
+    """Whether every time that can be read carries its own offset; False where none can be read."""
+    read = [t for t in texts if _fits(t, order)]
+    return bool(read) and all(has_offset(t, order) for t in read)
 
 
 def has_offset(text: str, order: str) -> bool:
