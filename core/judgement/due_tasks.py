@@ -15,7 +15,10 @@ from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 
 LEAK_MARKERS = ("leak_over_limit", "leak_large")
-OXYGEN_MARKERS = ("over_oxygenation", "spo2_above_range", "spo2_below_range", "spo2_deep", "fio2_need_rising")
+OXYGEN_MARKERS = (
+    "over_oxygenation", "over_oxygenation_far", "spo2_above_range", "spo2_below_range", "spo2_deep",
+    "fio2_need_rising",
+)  # fmt: skip
 
 
 def _rule(seen: Observed, key: str) -> DueRule | None:

@@ -164,6 +164,13 @@ ROWS = {
         outside=(BASE, LUNG + MORE),
         as_of="02:40",
     ),
+    "over_oxygenation_far": Row(
+        BASE + SPO2.format(97),
+        ("97 97", "96 96"),
+        (SPO2.format(97), ""),
+        outside=(BASE, LUNG + MORE),
+        as_of="02:40",
+    ),
     "spo2_above_range": Row(
         LUNG + START + SPO2.format(99), ("99 99", "98 98"), (" fio2 30", ""), as_of="02:40"
     ),

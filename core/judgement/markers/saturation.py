@@ -50,8 +50,15 @@ def over_oxygenation(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     return _above(seen, rule, at_risk=True)
 
 
-def _above(seen: Observed, rule: MarkerRule, *, at_risk: bool) -> Iterable[Spell]:
+def over_oxygenation_far(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
+    """SpO2 5 points or more above range for 15 min while oxygen is given, at hypercapnic risk."""
+    return _above(seen, rule, at_risk=True, margin=rule.limits["points"])
+
+
+def _above(seen: Observed, rule: MarkerRule, *, at_risk: bool, margin: float = 0.0) -> Iterable[Spell]:
     spo2, _, high = seen.once(ranged)
+    # at least `margin` above counts: the crossing is strict, so the limit lies a hair below
+    high = high + margin - 1e-9 if margin else high
     if not (spo2.v > high).any():
         return []
     counts = seen.oxygen_given(spo2.t) & (seen.at_risk(spo2.t) == at_risk)

@@ -55,6 +55,12 @@ def test_spo2_deep_below_its_range(log, expected):
         (COPD + START + "01:10 o2_flow 2\n", "device spo2 02:00 02:20 93 93", "over_oxygenation", "02:00-"),
         (LUNG + START, "device spo2 02:00 02:20 99 99", "spo2_above_range", "02:00-"),
         (LUNG + START, "device spo2 02:00 02:20 99 99", "over_oxygenation", ""),
+        (COPD + START, "device spo2 02:00 02:20 97 97", "over_oxygenation_far", "02:00-"),  # 5 above 92
+        (COPD + START, "device spo2 02:00 02:20 96 96", "over_oxygenation_far", ""),
+        (COPD + START, "device spo2 02:00 02:14 97 97", "over_oxygenation_far", ""),
+        (COPD + START, "02:00 spo2 98\n02:20 spo2 97", "over_oxygenation_far", "02:20-"),
+        (COPD + START + "01:10 fio2 21%\n", "device spo2 02:00 02:20 98 98", "over_oxygenation_far", ""),
+        (LUNG + START, "device spo2 02:00 02:20 99 99", "over_oxygenation_far", ""),
         (LUNG + START, "device spo2 02:00 02:20 98 98", "spo2_above_range", ""),
     ],
 )
