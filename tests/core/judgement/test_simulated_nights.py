@@ -91,7 +91,8 @@ def test_over_many_seeds(capsys):
         print(f"\n{len(well)} stable episodes, {len(false)} escalated")
         print(f"{len(failed)} that failed, {len(told)} escalated; of {len(drawn)} with a gas drawn once failing, "
               f"{sum(bool(s.escalated) for s in drawn)}")  # fmt: skip
-        print(f"{len(between)} of failing kinds that did not fail, {sum(bool(s.escalated) for s in between)} escalated")
+        between_told = sum(bool(s.escalated) for s in between)
+        print(f"{len(between)} of failing kinds that did not fail, {between_told} escalated")
     # the rules name some who then recover (pH below 7.25, not yet better at 1-2 h), and P/F counts at 1 h alone
     assert len(false) <= 0.02 * len(well)
     assert sum(bool(s.escalated) for s in drawn) >= 0.9 * len(drawn)
