@@ -1,0 +1,276 @@
+"""The frame of a form that writes: cards of fields that scroll, under them what will be recorded, two buttons.
+
+Every edit is previewed by the operation that reads it; Enter records what is shown. A question is asked first and
+only a second Enter says yes. Enter while a preview is awaited records once it has come and asks nothing. Esc leaves
+all untouched.
+"""
+
+from __future__ import annotations
+
+from html import escape
+from typing import Any
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QShowEvent
+from PySide6.QtWidgets import (
+    QDialog,
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QPushButton,
+    QScrollArea,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app.failure import Failure
+from app.forms.cells import Card
+from app.operations.outcome import Outcome
+from app.readers import reader_at
+from app.session import SessionModel
+from app.theme import Theme
+from app.words import Reader, sentence
+
+
+class PreviewedForm(QDialog):
+    """Build fields in `build`; say what they want in `request`. `recorded` after it was done."""
+
+    recorded = Signal(object)
+
+    def __init__(
+        self, title: str, model: SessionModel, gas_unit: str, theme: Theme, parent: QWidget | None = None
+    ) -> None:
+        super().__init__(parent)
+        self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self.model, self.gas_unit, self.theme = model, gas_unit, theme
+        self.preview: Any = None
+        self.asking = False
+        self._awaited, self._enter_pending = False, False
+        self._sent: object = None
+        self.title = QLabel(title)
+        self.title.setProperty("role", "title")
+        self.what = QLabel()
+        self.what.setProperty("role", "quiet")
+        self.time = QLineEdit()
+        self.time.setPlaceholderText(self.tr("now"))
+        self.time.setAccessibleName(self.tr("When: now, 14:20, or 20m ago"))
+        self.time.setToolTip(self.time.accessibleName())
+        self.said, self.as_line = QLabel(), QLabel()
+        self.go, self.leave = QPushButton(self.tr("Record")), QPushButton(self.tr("Leave"))
+        self.cards = QWidget()
+        self.stack = QVBoxLayout(self.cards)
+        self.first: QWidget = self.time
+        self.build()
+        self.stack.addStretch(1)
+        self._lay_out()
+        self.go.clicked.connect(self.submit)
+        self.leave.clicked.connect(self.reject)
+        self.time.textEdited.connect(self.edited)
+        self.edited()
+
+    # for each form
+
+    def build(self) -> None:
+        """Add cards of fields, each joined to `edited`."""
+        raise NotImplementedError
+
+    def request(self) -> object | None:
+        """What the fields ask to be recorded; None while they say nothing."""
+        raise NotImplementedError
+
+    def lacks(self) -> str:
+        """What must be filled in first, in words; "" where nothing."""
+        return ""
+
+    def ask_preview(self, request: Any) -> None:
+        """Ask what a request would record; answer to `previewed` and `refused`."""
+        raise NotImplementedError
+
+    def ask_record(self, request: Any, *, confirmed: bool) -> None:
+        """Record a request; answer to `was_recorded` and `refused`."""
+        raise NotImplementedError
+
+    def questions(self) -> tuple[str, ...]:
+        """What the preview asks, in words."""
+        raise NotImplementedError
+
+    def told(self) -> tuple[str, str, str]:
+        """The preview in words: for whom and when, what, and what it does."""
+        raise NotImplementedError
+
+    def show_extra(self) -> None:
+        """Show what the form knows beside the preview; called after each answer and each edit."""
+
+    # layout
+
+    def _lay_out(self) -> None:
+        """Tab goes through the fields, then to the moment and the buttons: in the order they come to the form."""
+        px = self.theme.px
+        roll = self.roll = QScrollArea(self)
+        self._roll_cards()
+        head = QHBoxLayout()
+        head.setSpacing(px(10))
+        head.addWidget(self.title)
+        head.addWidget(self.what)
+        head.addStretch(1)
+        when = QLabel(self.tr("When"))
+        when.setProperty("role", "strong")
+        when.setBuddy(self.time)
+        head.addWidget(when)
+        head.addWidget(self.time)
+        self.time.setFixedWidth(px(130))
+        column = QVBoxLayout(self)
+        column.setContentsMargins(px(18), px(14), px(18), px(14))
+        column.setSpacing(px(10))
+        column.addLayout(head)
+        column.addWidget(roll, 1)
+        column.addWidget(self._foot())
+
+    def _roll_cards(self) -> None:
+        self.stack.setContentsMargins(0, 0, self.theme.px(4), 0)
+        self.stack.setSpacing(self.theme.px(8))
+        self.roll.setWidgetResizable(True)
+        self.roll.setFrameShape(QFrame.Shape.NoFrame)
+        self.roll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.roll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.roll.setWidget(self.cards)
+
+    def showEvent(self, event: QShowEvent) -> None:
+        super().showEvent(event)
+        self.first.setFocus(Qt.FocusReason.TabFocusReason)
+
+    def _foot(self) -> QFrame:
+        px = self.theme.px
+        foot = QFrame()
+        foot.setProperty("card", True)
+        self.said.setTextFormat(Qt.TextFormat.RichText)
+        self.said.setWordWrap(True)
+        self.said.setAlignment(Qt.AlignmentFlag.AlignTop)
+        self.said.setMinimumHeight(round(px(self.theme.type.body) * 1.3) * 3)
+        self.as_line.setProperty("role", "caption")
+        self.as_line.setWordWrap(True)
+        self.as_line.setTextFormat(Qt.TextFormat.PlainText)
+        self.go.setProperty("role", "primary")
+        self.go.setDefault(True)
+        self.leave.setAutoDefault(False)
+        for button in (self.go, self.leave):
+            button.setMinimumHeight(px(44))
+        row = QHBoxLayout()
+        row.setSpacing(px(8))
+        row.addWidget(self.as_line, 1)
+        row.addWidget(self.leave)
+        row.addWidget(self.go)
+        column = QVBoxLayout(foot)
+        column.setContentsMargins(px(14), px(10), px(14), px(12))
+        column.setSpacing(px(6))
+        column.addWidget(self.said)
+        column.addLayout(row)
+        return foot
+
+    def fit(self, width: int, height: int) -> None:
+        """Take the size that is wanted at 100 %, as far as the screen has it; what does not fit scrolls."""
+        parent = self.parentWidget()
+        room = parent.window().size() if parent is not None else self.screen().availableGeometry().size()
+        self.resize(
+            min(self.theme.px(width), room.width() - 24), min(self.theme.px(height), room.height() - 24)
+        )
+
+    def set_name(self, name: str) -> None:
+        """What the form is for."""
+        self.what.setText(name)
+        self.setWindowTitle(f"{name}, {self.title.text()}" if self.title.text() else name)
+
+    def card(self, heading: str = "", note: str = "") -> Card:
+        """A new card under the others."""
+        made = Card(self.theme, heading, note)
+        self.stack.addWidget(made)
+        return made
+
+    def reader(self) -> Reader:
+        """For whom sentences are written."""
+        return reader_at(self.model.session.zone, self.gas_unit, self.model.session.now())
+
+    # preview
+
+    def edited(self) -> None:
+        """A field changed: what was asked before is asked anew."""
+        self.preview, self.asking, self._enter_pending = None, False, False
+        self._sent = self.request()
+        lacks = self.lacks()
+        self._awaited = self._sent is not None and not lacks
+        self.go.setEnabled(self._awaited)
+        if self._awaited:
+            self.ask_preview(self._sent)
+        else:
+            self.say(escape(lacks or self.tr("Nothing to record yet. Esc leaves all as it is.")))
+        self.show_extra()
+
+    def previewed(self, outcome: Outcome[Any]) -> None:
+        """The preview has come."""
+        if not self._awaited:
+            return
+        self.preview, self._awaited = outcome.value, False
+        self.show_extra()
+        if self._enter_pending and not self.questions():
+            self._record(confirmed=False)
+            return
+        self._enter_pending = False
+        self.say(self._html())
+
+    def refused(self, failure: Failure) -> None:
+        """What the fields say cannot be recorded."""
+        self._awaited, self._enter_pending, self.asking = False, False, False
+        self.go.setEnabled(False)
+        self.say(
+            f"<b>{escape(self.tr('Not recorded.'))}</b> {escape(sentence(failure.message, self.reader()))}"
+        )
+
+    def _html(self) -> str:
+        quiet = self.theme.colours.ink_quiet
+        (head, what, effects), questions = self.told(), self.questions()
+        text = f"<b>{escape(head)}:</b> {escape(what)}."
+        if effects:
+            text += f" <span style='color:{quiet}'>{escape(effects)}</span>"
+        ask = self.tr("Enter asks once more.") if questions else self.tr("Enter records.")
+        strong = f" <b>{escape(' '.join(questions))}</b>" if questions else ""
+        return f"{text}{strong} <span style='color:{quiet}'>{escape(ask)}</span>"
+
+    # recording
+
+    def submit(self) -> None:
+        """Record what is shown; a question is asked first, and only a second Enter says yes."""
+        if self.asking:
+            self._record(confirmed=True)
+        elif self.preview is not None and self.questions():
+            self.asking = True
+            ask = self.tr("Enter again says yes, Esc leaves it.")
+            self.say(f"<b>{escape(' '.join(self.questions()))}</b> {escape(ask)}")
+        elif self.preview is not None:
+            self._record(confirmed=False)
+        elif self._awaited:
+            self._enter_pending = True
+
+    def _record(self, *, confirmed: bool) -> None:
+        if not self.model.session.person:
+            self.say(escape(self.tr("Nobody is signed in. Leave the form: Ctrl+I says who you are.")))
+            return
+        self.go.setEnabled(False)
+        self._enter_pending = False
+        self.ask_record(self._sent, confirmed=confirmed)
+
+    def was_recorded(self, outcome: Outcome[Any]) -> None:
+        """It was recorded."""
+        self.recorded.emit(outcome.value)
+        self.accept()
+
+    def say(self, html: str) -> None:
+        """Say something under the fields."""
+        self.said.setText(html)
+        self.said.setAccessibleName(self.plain())
+
+    def plain(self) -> str:
+        """What stands under the fields, in plain words."""
+        from PySide6.QtGui import QTextDocumentFragment
+
+        return QTextDocumentFragment.fromHtml(self.said.text()).toPlainText()
