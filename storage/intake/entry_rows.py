@@ -151,18 +151,15 @@ class EntryRows:
         found = [e for e in entries if e.channel == "leak_definition" and e.at <= at and e.words]
         return max(found, key=lambda e: e.at).words if found else None
 
-    def combined(self, episode: str, rows: Iterable[EntryRow]) -> list[Entry]:
-        """The store's entries of an episode with the file's own behind them; a row's sequence tells its place."""
-        return list(self._held_entries(episode)) + [
-            _as_recorded(row, _IN_FILE + i)
-            for i, row in enumerate(rows)
-            if row.draft.entry.episode == episode
-        ]
+    def combined(self, episode: str, rows: Iterable[tuple[int, EntryRow]]) -> list[Entry]:
+        """The store's entries of an episode with the file's own, each with its place, behind them."""
+        return list(self._held_entries(episode)) + [_as_recorded(row, _IN_FILE + i) for i, row in rows]
 
     def _find_contradictions(self, rows: list[EntryRow]) -> None:
         touched = {r.draft.entry.episode for r in rows if r.draft.entry.channel in ("ipap", "epap", "mode")}
+        of = _by_episode(rows)
         for episode in sorted(touched):
-            for found in contradictions(self.combined(episode, rows), _IN_FILE):
+            for found in contradictions(self.combined(episode, of[episode]), _IN_FILE):
                 self._note(found, rows)
 
     def _note(self, found: Contradiction, rows: list[EntryRow]) -> None:
@@ -181,7 +178,8 @@ class EntryRows:
                 self._findings.doubt(row.line, "value", _shown(row), message)
         out = list(rows)
         entries = [r.draft.entry for r in rows]
-        for i, message in gas_row_doubts(entries, lambda key: self.combined(key, rows), self._existing):
+        of = _by_episode(rows)
+        for i, message in gas_row_doubts(entries, lambda key: self.combined(key, of[key]), self._existing):
             self._findings.doubt(rows[i].line, "value", _shown(rows[i]), message)
             if not out[i].draft.entry.doubt:
                 entry = replace(out[i].draft.entry, doubt=message.key)
@@ -203,6 +201,14 @@ class EntryRows:
                     "first": first.draft.entry.number,
                 }
                 self._findings.doubt(row.line, "value", _shown(row), Message("row.two_values", values))
+
+
+def _by_episode(rows: Iterable[EntryRow]) -> dict[str, list[tuple[int, EntryRow]]]:
+    """Rows with their places, by episode: a file of thousands of episodes is gone through once."""
+    found: dict[str, list[tuple[int, EntryRow]]] = {}
+    for i, row in enumerate(rows):
+        found.setdefault(row.draft.entry.episode, []).append((i, row))
+    return found
 
 
 def _as_recorded(row: EntryRow, seq: int) -> Entry:

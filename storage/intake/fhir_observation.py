@@ -183,7 +183,7 @@ class ObservationRows:
             base = identity("fhir", about.identity or f"{about.episode}|{about.at}|{where}", code)
         if stated is Standing.GONE:
             entry = NewEntry(about.episode, known.key, about.at, by=by, note=note)
-            return Result(number, base, identity(base, about.status), entry, stated, about.status, about.issued)
+            return Result(number, base, (about.status,), entry, stated, about.status, about.issued)
         if "valueSampledData" in part:
             self._take_samples(about, part, known)
             return None
@@ -196,7 +196,7 @@ class ObservationRows:
         if about.is_own:
             entry = replace(entry, zone=_extension(about.found.resource, "zone") or "UTC",
                             doubt=_extension(about.found.resource, "doubt") or entry.doubt)  # fmt: skip
-        version = identity(base, about.status, str(about.issued or ""), entry.raw, entry.raw_unit, str(about.at))
+        version = (about.status, str(about.issued or ""), entry.raw, entry.raw_unit, str(about.at))
         return Result(number, base, version, entry, stated, about.status, about.issued, doubts)
 
     def _reading(self, number: int, where: str, part: Json, known: Channel) -> Reading | None:

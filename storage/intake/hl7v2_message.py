@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field, replace
-from typing import TYPE_CHECKING, Any, Protocol
+from typing import TYPE_CHECKING, Any, Protocol, overload
 
 from core.record import instant
 from core.record.channels import CHANNELS
@@ -58,7 +58,7 @@ class _Observed:
     """One OBX while its notes are gathered."""
 
     line: int
-    fields: list[str]
+    fields: Sequence[str]
     order: _Order
     notes: list[str] = field(default_factory=list)
 
@@ -121,7 +121,7 @@ class MessageRows:
             doubts = (*doubts, Message(PRELIMINARY, {"channel": meaning.channel}))
             entry = replace(entry, doubt=entry.doubt or PRELIMINARY)
         base = self._base(message, o, at)
-        version = identity(base, status, str(issued or ""), entry.raw, entry.raw_unit, str(at))
+        version = (status, str(issued or ""), entry.raw, entry.raw_unit, str(at))
         why = f"status {status}" if status else ""
         return Result(o.line, base, version, entry, stated, why, issued, doubts), meaning.site or o.order.site
 
@@ -184,7 +184,8 @@ class _Message:
 
         try:
             parsed: Any = hl7.parse(raw.text)
-            self._segments = [[str(f) for f in segment] for segment in parsed]
+            self._segments = [_Fields(segment) for segment in parsed]
+            self._kinds = [fields[0] for fields in self._segments]
         except Exception as error:  # the parser raises whatever its slicing meets
             raise refuse("hl7.unreadable", detail=type(error).__name__, accepted="an HL7 v2 message") from None
         marks = raw.text[3:8].ljust(5)
@@ -204,7 +205,7 @@ class _Message:
         if kind[:2] != ["ORU", "R01"] and kind[:1] != ["ORU"]:
             raise refuse("hl7.not_a_result", value=_get(self.header, 9)[:40], accepted="ORU^R01")
 
-    def part(self, fields: list[str], index: int) -> str:
+    def part(self, fields: Sequence[str], index: int) -> str:
         """The first component of a field of the header, which counts its separator as a field."""
         return _get(fields, index + 1).split(self.component)[0]
 
@@ -230,7 +231,7 @@ class _Message:
         found: list[_Observed] = []
         last: _Observed | None = None
         for number, segment in enumerate(self._segments):
-            kind = segment[0]
+            kind = self._kinds[number]
             if kind == "OBR":
                 order = _Order(_get(segment, 3).split(self.component)[0], _get(segment, 7), self._site(segment, 15))
                 last = None
@@ -245,7 +246,7 @@ class _Message:
                 last.notes.append(_get(segment, 3))
         return found
 
-    def _site(self, segment: list[str], index: int) -> str:
+    def _site(self, segment: Sequence[str], index: int) -> str:
         text = _get(segment, index)
         for part in text.replace(self._subcomponent, self.component).split(self.component):
             word = part.strip().upper()
@@ -296,7 +297,30 @@ class _Message:
         return _ESCAPE.sub(undone, text)
 
 
-def _get(fields: list[str], index: int) -> str:
+class _Fields(Sequence[str]):
+    """The fields of a segment as texts, made when they are asked for: most never are."""
+
+    def __init__(self, segment: Any) -> None:
+        self._segment = segment
+        self._made: dict[int, str] = {}
+
+    def __len__(self) -> int:
+        return len(self._segment)
+
+    @overload
+    def __getitem__(self, index: int) -> str: ...
+    @overload
+    def __getitem__(self, index: slice) -> list[str]: ...
+    def __getitem__(self, index: int | slice) -> str | list[str]:
+        if isinstance(index, slice):
+            return [str(f) for f in list.__getitem__(self._segment, index)]
+        made = self._made.get(index)
+        if made is None:
+            made = self._made[index] = str(list.__getitem__(self._segment, index))
+        return made
+
+
+def _get(fields: Sequence[str], index: int) -> str:
     return fields[index] if index < len(fields) else ""
 
 

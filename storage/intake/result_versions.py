@@ -29,11 +29,14 @@ class Standing(StrEnum):
 
 @dataclass(frozen=True, slots=True)
 class Result:
-    """One result as sent. For `GONE` the entry's value does not matter. `why` is the sender's status."""
+    """One result as sent. For `GONE` the entry's value does not matter. `why` is the sender's status.
+
+    `version` are the parts that tell this version from others of the same base.
+    """
 
     line: int
     base: str
-    version: str
+    version: tuple[str, ...]
     entry: NewEntry
     standing: Standing
     why: str
@@ -83,34 +86,36 @@ class ResultVersions:
     def add(self, result: Result) -> EntryRow | None:
         """The row that a result makes, or None where it brings nothing new."""
         chain = self._chain(result)
+        if not chain:
+            if result.standing is not Standing.GONE:
+                return self._row(result, chain, result.base, Action.ASSERT)
+            self.nothing_to_withdraw.append(result)
+            return None
         fresh = 1 + max((i for i, link in enumerate(chain) if link.gone and link.with_file), default=-1)
-        live = chain[fresh:]
-        if fresh:  # its file was withdrawn whole: what it brought may come again, as new versions
-            result = replace(result, version=identity(result.version, chain[fresh - 1].id))
-        if result.version in self._versions or self._is_stored(result.version, result.entry.episode):
+        # where its file was withdrawn whole, what it brought may come again, as new versions
+        parts = (result.base, *result.version, *((chain[fresh - 1].id,) if fresh else ()))
+        version = identity(*parts)
+        if version in self._versions or self._is_stored(version, result.entry.episode):
             self.repeated += 1
             return None
-        self._versions.add(result.version)
+        self._versions.add(version)
+        live = chain[fresh:]
         if result.standing is Standing.GONE:
-            return self._gone(result, chain, live)
-        if not live:
-            first = not chain
-            return self._row(result, chain, result.base if first else result.version,
-                             Action.ASSERT if first else Action.CORRECT)  # fmt: skip
+            return self._gone(result, version, chain, live)
         held = [k for k in live if not k.gone and (k.value, k.at) == (_value(result.entry), result.entry.at)]
         if held and (result.standing is Standing.GIVEN or held[-1] is chain[-1]):
             self.repeated += 1
             return None
-        return self._row(result, chain, result.version, Action.CORRECT)
+        return self._row(result, chain, version, Action.CORRECT)
 
-    def _gone(self, result: Result, chain: list[_Link], live: list[_Link]) -> EntryRow | None:
+    def _gone(self, result: Result, version: str, chain: list[_Link], live: list[_Link]) -> EntryRow | None:
         if not live:
             self.nothing_to_withdraw.append(result)
             return None
         if live[-1].gone:
             self.repeated += 1
             return None
-        return self._row(result, chain, result.version, Action.WITHDRAW)
+        return self._row(result, chain, version, Action.WITHDRAW)
 
     def _row(self, result: Result, chain: list[_Link], entry_id: str, action: Action) -> EntryRow:
         entry = result.entry
