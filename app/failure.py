@@ -13,6 +13,7 @@ from storage.errors import StoreError
 
 _log = logging.getLogger("luffmark")
 
+_MOST_CAUSES = 5
 _FILE_KEYS = {
     errno.ENOENT: "file.missing",
     errno.EACCES: "file.not_allowed",
@@ -44,6 +45,21 @@ class Failure:
         return bool(self.trace)
 
 
+def frames_of(error: BaseException) -> str:
+    """Where an error came from: its kinds and frames, without its words, which may hold what somebody typed.
+
+    >>> frames_of(ValueError("Bed 7")).strip()
+    'ValueError'
+    """
+    parts: list[str] = []
+    found: BaseException | None = error
+    while found is not None and len(parts) < _MOST_CAUSES:
+        frames = "".join(traceback.format_tb(found.__traceback__))
+        parts.append(f"{frames}{type(found).__name__}\n")
+        found = found.__cause__ or (None if found.__suppress_context__ else found.__context__)
+    return "\ncaused the following:\n".join(reversed(parts))
+
+
 def failure_of(error: BaseException, subject: str = "", number: int = 0) -> Failure:
     """The failure that an exception means.
 
@@ -60,7 +76,7 @@ def failure_of(error: BaseException, subject: str = "", number: int = 0) -> Fail
         return Failure(Message(key, values), subject, number)
     if isinstance(error, OSError) and error.errno in (errno.ENOSPC, errno.EDQUOT):
         return Failure(Message("file.disk_full", {"path": "", "detail": str(error)}), subject, number)
-    trace = "".join(traceback.format_exception(error))
+    trace = frames_of(error)
     _log.error("unexpected error in %s\n%s", subject or "work", trace)
     detail = f"{type(error).__name__}: {error}".splitlines()[0][:200]
     return Failure(Message("error.unexpected", {"detail": detail}), subject, number, trace)

@@ -15,6 +15,7 @@ from typing import Any, Final
 from app.shift import STARTS
 
 MOST_RECENT: Final = 8
+MOST_LOCK_MINUTES: Final = 120
 TEXT_SCALES: Final = (1.0, 1.15, 1.3, 1.5, 1.75, 2.0)
 
 
@@ -30,6 +31,7 @@ class Preferences:
     recent_stores: tuple[str, ...] = ()
     window: tuple[int, ...] = ()
     person: str = ""
+    lock_minutes: int = 10
 
     def with_store(self, path: str) -> Preferences:
         """With a store as the most recent one."""
@@ -108,6 +110,8 @@ def _accepted(key: str, value: Any) -> bool:
         return bool(1.0 <= value <= 2.0)
     if key == "gas_unit":
         return bool(value in ("mmHg", "kPa"))
+    if key == "lock_minutes":
+        return bool(1 <= value <= MOST_LOCK_MINUTES)
     if key == "window":
         return len(value) in (0, 4) and all(isinstance(n, int) for n in value)
     if key == "shift_starts":

@@ -68,6 +68,8 @@ class ProgressLine(QFrame):
             self.hide()
 
     def _appear(self) -> None:
+        if self._over is None or not self._over.isVisible():
+            return  # nothing to stand over: the window is locked
         self.show()
         self.place()
 

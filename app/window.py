@@ -7,7 +7,7 @@ from pathlib import Path
 
 from PySide6.QtCore import Signal
 from PySide6.QtGui import QCloseEvent, QResizeEvent
-from PySide6.QtWidgets import QApplication, QMainWindow, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QApplication, QMainWindow, QStackedWidget, QVBoxLayout, QWidget
 
 from app import preferences as kept
 from app.action_table import DEEDS
@@ -64,7 +64,11 @@ class MainWindow(QMainWindow):
         self._column = QVBoxLayout(self._middle)
         self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(0)
-        self.setCentralWidget(self._middle)
+        self.cover = QStackedWidget()
+        """What the window shows, and the page that stands before it while it is locked."""
+        self.cover.addWidget(self._middle)
+        self.cover.addWidget(self.keeping.lock.page)
+        self.setCentralWidget(self.cover)
         self.setWindowTitle("Luffmark")
         self.setMinimumSize(*LEAST_SIZE)
         self._set_ticks()
@@ -184,7 +188,8 @@ class MainWindow(QMainWindow):
         for deed in DEEDS:
             allowed = (has_store or not deed.needs_store) and (has_episode or not deed.needs_episode)
             kept = (looks_back or self.keeping.forbids_recording) and deed.records
-            self.actions_by_key[deed.key].setEnabled(allowed and not kept)
+            locked = self.keeping.lock.is_locked and deed.key != "quit"
+            self.actions_by_key[deed.key].setEnabled(allowed and not kept and not locked)
 
     # what is shown
 
@@ -223,7 +228,7 @@ class MainWindow(QMainWindow):
         foot.addWidget(self.opened.strip)
         self._column.addLayout(foot)
         self._connect(self.opened)
-        self.keeping.opened(model)
+        self.keeping.opened(self.opened)
         self._tell_session()
         self._place_top()
         self.opened.pages.ward.lanes.setFocus()
@@ -342,6 +347,12 @@ class MainWindow(QMainWindow):
         o = self._now_open()
         looking_back = self.tr("Looking back: nothing can be logged. Alt+Home goes back to now.")
         o.strip.set_closed(self.keeping.why_closed() if o.model.session.is_live else looking_back)
+        self._set_ticks()
+
+    def tell_locked(self) -> None:
+        """The window was locked or unlocked: title and actions follow."""
+        if self.opened is not None:
+            self._tell_session()
         self._set_ticks()
 
     def _tell_session(self) -> None:

@@ -68,6 +68,7 @@ class Database:
         self._file = _identity(path)
         self.engine = sa.create_engine(
             "sqlite://",
+            hide_parameters=True,  # an error's text must not carry what was to be recorded
             module=dbapi2,
             creator=lambda: raw_connection(path, key, mode=mode, busy=busy),
             poolclass=sa.QueuePool,

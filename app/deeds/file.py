@@ -213,7 +213,10 @@ class FileDeeds(Doer):
     # person
 
     def do_sign_in(self) -> None:
-        """Ask for initials."""
+        """Ask for initials; where people have PINs, the screen closes until one signs in."""
+        if self.model.session.has_people:
+            self.window.keeping.lock_now()
+            return
         from app.dialogs.sign_in import SignInDialog
 
         dialog = SignInDialog(self.model.session.person, self.window.theme, self.window)

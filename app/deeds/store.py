@@ -5,10 +5,12 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QInputDialog
 
 from app.deeds.doer import Doer
 from app.failure import Failure
 from app.operations.outcome import Outcome
+from app.preferences import MOST_LOCK_MINUTES
 
 if TYPE_CHECKING:
     from app.dialogs.passphrase import ChangePassphraseDialog, RecoveryCodeDialog
@@ -19,6 +21,41 @@ class StoreDeeds(Doer):
 
     _changing: ChangePassphraseDialog | None = None
     code_dialog: RecoveryCodeDialog | None = None
+
+    # the lock
+
+    def do_lock(self) -> None:
+        """Hide every screen."""
+        self.window.keeping.lock_now(self.model.session.person)
+
+    def do_lock_after(self) -> None:
+        """Ask after how many minutes."""
+        minutes, given = QInputDialog.getInt(
+            self.window, self.tr("Lock after"), self.tr("Minutes without key or mouse"),
+            self.window.preferences.lock_minutes, 1, MOST_LOCK_MINUTES,
+        )  # fmt: skip
+        if given:
+            self.lock_after(minutes)
+
+    def lock_after(self, minutes: int) -> None:
+        """Lock after so many minutes from now on."""
+        self.window.prefer(lock_minutes=minutes)
+        self.window.keeping.set_lock_minutes(minutes)
+
+    # people
+
+    def do_people(self) -> None:
+        """List the people; the dialog adds, retires and gives PINs."""
+        from app.dialogs.people import PeopleDialog
+
+        dialog = PeopleDialog(self.model, self.window.reader, self.window.theme, self.window)
+        dialog.changed.connect(self._people_changed)
+        dialog.open()
+
+    def _people_changed(self) -> None:
+        """The first person was added: from now on nobody logs unproven."""
+        if self.model.session.has_people and not self.model.session.person_proven:
+            self.window.keeping.lock_now(self.model.session.person)
 
     # passphrase
 

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
 from core.record.instant import Instant
+from storage.errors import store_error
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -45,10 +46,12 @@ def change(store: Store, who: str, now: Instant, request: ChangeRequest) -> Outc
     return Outcome(code, receipt.last_seq)
 
 
-def opens(store: Store, who: str, now: Instant, request: str) -> Outcome[bool]:
-    """Whether a secret is the store's passphrase or recovery code.
+def unlock(store: Store, who: str, now: Instant, request: str) -> Outcome[None]:
+    """Check that a secret is the store's passphrase or recovery code.
 
     Raises:
-        StoreError: `key.envelope_missing`, `key.envelope_altered`, `store.not_encrypted`.
+        StoreError: `key.wrong_passphrase`, `key.envelope_missing`, `key.envelope_altered`, `store.not_encrypted`.
     """
-    return Outcome(store.opens_with(request), store.head())
+    if not store.opens_with(request):
+        raise store_error("key.wrong_passphrase")
+    return Outcome(None, store.head())

@@ -126,7 +126,7 @@ def write(value: Value, how: str, values: Mapping[str, Value], reader: Reader) -
     try:
         return writer(value, values, reader)
     except (TypeError, ValueError):
-        _log.warning("value %r cannot be written as %s", value, how)
+        _log.warning("a value of type %s cannot be written as %s", type(value).__name__, how)
         return str(value)
 
 

@@ -68,6 +68,7 @@ def test_nothing_of_a_patient_is_among_them():
         "recent_stores",
         "window",
         "person",
+        "lock_minutes",
     }
 
 
