@@ -30,6 +30,7 @@ BACK_MIN: Final = 120
 """How far the picture of a look back looks back."""
 DIALOGS: Final = (
     ("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
+    ("policy", "policy"),
     ("table", "table"), ("help", "help"), ("about", "about"),
 )  # fmt: skip
 _PATIENCE_S: Final = 60.0

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from app.deeds.due import DueDeeds
 from app.deeds.episode import EpisodeDeeds
 from app.deeds.file import FileDeeds
 from app.deeds.help import HelpDeeds
@@ -26,6 +27,7 @@ class Doers:
         self.review, self.policy = ReviewDeeds(window), PolicyDeeds(window)
         self.store = StoreDeeds(window)
         self.episode, self.view, self.help = EpisodeDeeds(window), ViewDeeds(window), HelpDeeds(window)
+        self.due = DueDeeds(window)
 
     def of(self, menu: str) -> object:
         """The object that serves a menu."""

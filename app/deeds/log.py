@@ -91,7 +91,8 @@ class LogDeeds(FormDeeds):
         self._settling.deleteLater()
         self._flag_said(outcome)
 
-    def _flag_said(self, outcome: Outcome[Recorded]) -> None:  # noqa: ARG002
+    def _flag_said(self, outcome: Outcome[Recorded]) -> None:
+        self.strip.remember(outcome.value)
         label = self.strip.whom.text()
         self.window.say(self.tr("Your word on the flag is recorded for {label}.").format(label=label))
 
@@ -112,6 +113,10 @@ class LogDeeds(FormDeeds):
         if flag is None:
             self.window.say(self.tr("No open flag."))
         return flag
+
+    def do_close_due(self) -> None:
+        """A person's word on a due item."""
+        self.window.doers.due.close()
 
     def do_correct(self) -> None:
         """Show what was logged for this patient, to be corrected, withdrawn or moved."""

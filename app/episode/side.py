@@ -8,6 +8,7 @@ from dataclasses import replace
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
 
+from app.episode.due_done import done_fact
 from app.episode.figure_list import FigureList
 from app.episode.flag_history import history_fact, word_lines
 from app.explain import Explainer, Explanation, sure_words
@@ -134,7 +135,9 @@ class _Facts:
             translate("side", "Flags"),
             (*(tuple(self._flags()) or (self._quiet(translate("side", "No open flag")),)), *self._earlier()),
         )
-        yield translate("side", "Due"), tuple(self._due()) or (self._quiet(translate("side", "Nothing due")),)
+        due = tuple(self._due()) or (self._quiet(translate("side", "Nothing due")),)
+        done = done_fact(self.theme, self.f, self.reader)
+        yield translate("side", "Due"), due if done is None else (*due, done)
         levers = tuple(self._levers())
         if levers:
             yield translate("side", "What could act"), levers
@@ -290,6 +293,7 @@ class _Facts:
                 self.theme,
                 title,
                 (sentence(d.because, self.reader),),
+                payload=d,
                 explanation=self.explainer.due(d),
                 quiet=d.state == "open",
             )

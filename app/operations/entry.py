@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -204,6 +204,13 @@ def move(store: Store, who: str, now: Instant, request: MoveRequest) -> Outcome[
     return _append(store, request.to_episode, (new,), who, "entry.move", now)
 
 
+TAKEN_BACK: Mapping[Action, Mapping[str | None, str]] = {
+    Action.FLAG: {"seen": "not seen", "settled": "reopened"},
+    Action.DUE: {"done": "open again", "not needed": "open again"},
+}
+"""The word that undoes a person's word."""
+
+
 def undo(store: Store, who: str, now: Instant, request: UndoRequest) -> Outcome[Recorded]:
     """Take back a recording by the inverse of each of its entries, the last first.
 
@@ -295,7 +302,10 @@ def _withdrawal(old: Entry, who: str) -> NewEntry:
 
 
 def _inverse(entry: Entry, known: dict[str, Entry], who: str) -> NewEntry:
-    """The entry that brings back what stood before `entry`."""
+    """The entry that brings back what stood before `entry`. A word on a flag or due item is taken back by a word."""
+    if entry.words in TAKEN_BACK.get(entry.action, ()):
+        words = TAKEN_BACK[entry.action][entry.words]
+        return replace(_as_new(entry), words=words, by=who, action=entry.action, reason="undo")
     before = known.get(entry.replaces)
     if before is None or before.action is Action.WITHDRAW:
         return replace(_withdrawal(entry, who), reason="undo")

@@ -38,6 +38,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "episode.unknown": "There is no episode '{episode}' in this store. Known: {accepted}.",
     "erasure.no_reason": "Removing an episode needs its reason: {accepted}.",
     "erasure.unknown_episode": "There is nothing of episode '{episode}' to remove. Accepted: {accepted}.",
+    "due_word.no_reason": "That something is not needed here needs its reason: {accepted}.",
+    "due_word.not_due": "{due:due} is not due in episode {episode}. Accepted: {accepted}.",
     "flag.no_reason": "Settling a flag needs its reason: {accepted}.",
     "flag.not_open": "The flag '{marker:marker}' is not open: it is {state}.",
     "flag.unknown": "Episode {episode} has no flag {flag}.",

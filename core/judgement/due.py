@@ -74,12 +74,17 @@ def _shown(seen: Observed, item: Item) -> bool:
 
 
 def _by_person(seen: Observed, item: Item) -> Item:
-    """A person's word closes an item: `done` or `not needed`, at or after its beginning."""
+    """A person's word closes an item: `done` or `not needed`, at or after its beginning, unless it was taken back
+    (`open again`)."""
     if item.done_at is not None:
         return item
     begun: Instant = min(item.due_from, item.anchor_at if item.anchor_at is not None else item.due_from)
+    closed = item
     for entry in seen.episode.transitions:
-        said = entry.action is Action.DUE and entry.channel == item.what and entry.words in ("done", "not needed")
-        if said and entry.at >= begun:
-            return replace(item, done_at=entry.at, done_by=entry.by or entry.id)
-    return item
+        if entry.action is not Action.DUE or entry.channel != item.what or entry.at < begun:
+            continue
+        if entry.words == "open again":
+            closed = item
+        elif entry.words in ("done", "not needed") and closed is item:
+            closed = replace(item, done_at=entry.at, done_by=entry.by or entry.id)
+    return closed

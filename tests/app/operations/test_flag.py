@@ -7,6 +7,7 @@ import pytest
 
 from app.operations import entry, episode, figures, flag
 from core.judgement.shapes import FlagFigure
+from core.record.entries import Action
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
 from storage.store import Store
@@ -72,3 +73,17 @@ def test_a_correction_undoes_the_flag_and_it_stays_visible(store: Store) -> None
     gone = acidosis(store, NOW + MINUTE)
     assert gone.undone_by_correction
     assert gone.state == "no longer met"
+
+
+def test_a_word_on_a_flag_is_taken_back_by_undo(store: Store) -> None:
+    before = acidosis(store)
+    seen = flag.see(store, "CD", NOW, flag.FlagRequest("A", before.flag_id)).value
+    settled = flag.settle(store, "CD", NOW, flag.FlagRequest("A", before.flag_id, "misread")).value
+    assert acidosis(store).state == "settled"
+    entry.undo(store, "CD", NOW + MINUTE, entry.UndoRequest("A", settled.ids))
+    assert acidosis(store, NOW + MINUTE).state == "seen"
+    entry.undo(store, "CD", NOW + MINUTE, entry.UndoRequest("A", seen.ids))
+    assert acidosis(store, NOW + MINUTE).state == "raised"
+    words = [e.words for e in store.entries("A") if e.action is Action.FLAG and e.channel == "ph_below_severe"]
+    assert words == ["raised", "seen", "settled", "reopened", "not seen"]
+    assert store.verify() == ()

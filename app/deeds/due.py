@@ -1,0 +1,59 @@
+"""Due items: a person's word on one."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from app.deeds.doer import Doer
+from app.operations.entry import Recorded
+from app.operations.outcome import Outcome
+from core.judgement.shapes import DueFigure
+
+if TYPE_CHECKING:
+    from app.dialogs.close_due import CloseDueDialog
+
+
+class DueDeeds(Doer):
+    """Serves the menu Log's entry on due items."""
+
+    asking: CloseDueDialog | None = None
+
+    def close(self) -> None:
+        """Ask which item, and whether it is done or not needed; the one that has the focus is proposed."""
+        from app.dialogs.close_due import CloseDueDialog
+
+        items = self._open_items()
+        if not items:
+            self.window.say(self.tr("Nothing is due."))
+            return
+        focused = self._focused()
+        chosen = focused if focused in items else items[0]
+        self.asking = CloseDueDialog(items, chosen, self.window.reader, self._close, self.window.theme, self.window)
+        self.asking.open()
+
+    def _open_items(self) -> list[DueFigure]:
+        feed, key = self.window.feed, self.model.session.selection
+        answer = feed.answers.get(key or "") if feed is not None else None
+        return [d for d in answer.figures.due if d.state != "done"] if answer is not None else []
+
+    def _focused(self) -> DueFigure | None:
+        from PySide6.QtWidgets import QApplication
+
+        payload = getattr(QApplication.focusWidget(), "payload", None)
+        return payload if isinstance(payload, DueFigure) else None
+
+    def _close(self, what: str, words: str, reason: str) -> None:
+        from app.operations import due
+
+        request = due.DueRequest(self.model.session.selection or "", what, words, reason)
+        failed = self.asking.failed if self.asking is not None else self.window.show_failure
+        self.model.ask(due.close, request, done=self._closed, failed=failed)
+
+    def _closed(self, outcome: Outcome[Recorded]) -> None:
+        if self.asking is not None:
+            self.asking.accept()
+            self.asking.deleteLater()
+            self.asking = None
+        if self.window.strip is not None:
+            self.window.strip.remember(outcome.value)
+        self.window.say(self.tr("Your word on the due item is recorded. Ctrl+Z takes it back."))
