@@ -3,10 +3,8 @@
 from __future__ import annotations
 
 from app.deeds.forms import FormDeeds
-from app.operations import episode as episode_operations
 from app.operations import flag as flag_operations
 from app.operations.entry import Recorded
-from app.operations.episode import BeginRequest
 from app.operations.outcome import Outcome
 from app.ward.lane_words import strongest_flag
 from core.judgement.shapes import FlagFigure
@@ -41,24 +39,15 @@ class LogDeeds(FormDeeds):
 
     def do_new_episode(self) -> None:
         """Ask for the facts of a new episode."""
-        from app.dialogs.new_episode import NewEpisodeDialog
+        from app.forms.begin_form import BeginForm
 
-        session = self.model.session
-        self._dialog = NewEpisodeDialog(
-            session.policy, session.now(), self.window.reader, self._begin, self.window.theme, self.window
-        )
-        self._dialog.open()
+        window = self.window
+        self._begin_form = BeginForm("", self.model, window.preferences.gas_unit, window.theme, window)
+        self._begin_form.recorded.connect(self._episode_begun)
+        self._begin_form.open()
 
-    def _begin(self, request: BeginRequest) -> None:
-        self._begun = request.episode
-        self.model.ask(
-            episode_operations.begin, request, done=self._episode_begun, failed=self._dialog.failed
-        )
-
-    def _episode_begun(self, outcome: Outcome[tuple[str, ...]]) -> None:  # noqa: ARG002
-        self._dialog.accept()
-        self._dialog.deleteLater()
-        self.model.select(self._begun)
+    def _episode_begun(self, _ids: object) -> None:
+        self.model.select(self._begin_form.begun)
 
     # flags
 

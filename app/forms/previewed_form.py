@@ -37,6 +37,8 @@ class PreviewedForm(QDialog):
     """Build fields in `build`; say what they want in `request`. `recorded` after it was done."""
 
     recorded = Signal(object)
+    timed = True
+    """Whether the form has a moment of its own, at its head."""
 
     def __init__(
         self, title: str, model: SessionModel, gas_unit: str, theme: Theme, parent: QWidget | None = None
@@ -119,6 +121,8 @@ class PreviewedForm(QDialog):
         when.setBuddy(self.time)
         head.addWidget(when)
         head.addWidget(self.time)
+        when.setVisible(self.timed)
+        self.time.setVisible(self.timed)
         self.time.setFixedWidth(px(130))
         column = QVBoxLayout(self)
         column.setContentsMargins(px(18), px(14), px(18), px(14))

@@ -2,35 +2,63 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from difflib import get_close_matches
+from math import nan
 from typing import TYPE_CHECKING
 
+from app.operations import policy
 from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome
-from core.record.channels import channel
-from core.record.entries import NewEntry, from_reading
+from core.judgement.entry_doubts import gas_doubts
+from core.record.channels import Kind, channel
+from core.record.entries import from_reading
 from core.record.episode import Episode
 from core.record.instant import Instant
-from core.record.message import refuse
-from core.record.reading import read_value
+from core.record.message import Message, refuse
+from core.record.reading import Reading, read_value
+from core.record.settings import Settings
 
 if TYPE_CHECKING:
     from storage.store import Store
 
 MOST_KEY = 60
+_NUMBER_UNIT = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))\s*(.*)")
+NO_SETTINGS = Settings(None, nan, nan, nan, nan, nan, nan, nan, None)
 
 
 @dataclass(frozen=True, slots=True)
 class BeginRequest:
-    """A new episode: its key, and profile facts as typed (channel key to text, or to text and unit)."""
+    """A new episode: its key, and profile facts as typed (channel key to text with its unit).
+
+    `given` are values of other moments: a baseline gas, settings that ran before logging began.
+    """
 
     episode: str
     facts: Mapping[str, str] = field(default_factory=dict)
     at: Instant | None = None
     zone: str = "UTC"
     confirmed: bool = False
+    given: tuple[Given, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Given:
+    """Values of one moment as typed, channel key to text with its unit."""
+
+    at: Instant
+    values: Mapping[str, str]
+
+
+@dataclass(frozen=True, slots=True)
+class Beginning:
+    """What beginning an episode would record: readings by moment, the facts first, and what to ask."""
+
+    episode: str
+    read: tuple[tuple[Instant, tuple[Reading, ...]], ...]
+    questions: tuple[Message, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,14 +92,49 @@ def begin(store: Store, who: str, now: Instant, request: BeginRequest) -> Outcom
     key = checked_key(request.episode)
     if key in store.episode_keys():
         raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
-    at = now if request.at is None else request.at
-    facts = dict(request.facts) or {"label": key}
-    entries: list[NewEntry] = []
-    for name, text in facts.items():
-        reading = read_value(channel(name), text)
-        entries.append(from_reading(key, at, reading, by=who, zone=request.zone, confirmed=request.confirmed))
+    entries = [
+        from_reading(key, at, reading, by=who, zone=request.zone, confirmed=request.confirmed)
+        for at, readings in _read(request, key, now)
+        for reading in readings
+    ]
     receipt = store.append(entries, by=who, operation="episode.begin", now=now)
     return Outcome(receipt.ids, receipt.last_seq)
+
+
+def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -> Outcome[Beginning]:
+    """What `begin` would record, and what to ask first; nothing is written.
+
+    Raises:
+        RecordError: as `begin`.
+    """
+    key = checked_key(request.episode)
+    if key in store.episode_keys():
+        raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
+    read = _read(request, key, now)
+    asked = [doubt for _, readings in read for r in readings for doubt in r.doubts]
+    for _, readings in read[1:]:
+        asked += gas_doubts(readings, NO_SETTINGS, policy.in_force(store))
+    return Outcome(Beginning(key, read, tuple(asked)), store.head())
+
+
+def _read(request: BeginRequest, key: str, now: Instant) -> tuple[tuple[Instant, tuple[Reading, ...]], ...]:
+    """The readings of a request by moment, the facts first."""
+    from app.operations.entry import check_not_future
+
+    at = now if request.at is None else request.at
+    moments = [(at, dict(request.facts) or {"label": key}), *((g.at, g.values) for g in request.given)]
+    for moment, _ in moments:
+        check_not_future(moment, now)
+    return tuple(
+        (moment, tuple(_typed(name, text) for name, text in values.items())) for moment, values in moments
+    )
+
+
+def _typed(name: str, text: str) -> Reading:
+    """A value as typed, its unit written at the number or behind it."""
+    c = channel(name)
+    match = _NUMBER_UNIT.fullmatch(text.strip()) if c.kind is Kind.NUMBER else None
+    return read_value(c, match[1], match[2]) if match else read_value(c, text)
 
 
 def checked_key(text: str) -> str:

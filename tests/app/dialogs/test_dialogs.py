@@ -7,7 +7,6 @@ from PySide6.QtWidgets import QApplication
 from app.dialogs.action_finder import ActionFinder
 from app.dialogs.correct import Act, CorrectDialog
 from app.dialogs.intake import IntakeDialog
-from app.dialogs.new_episode import NewEpisodeDialog
 from app.dialogs.panel_editor import PanelEditor
 from app.dialogs.sign_in import SignInDialog
 from app.dialogs.table import TableDialog
@@ -169,29 +168,6 @@ def test_a_wrong_value_is_refused_and_an_unusual_one_asked_about(qtbot, window):
     until(qtbot, lambda: "again says yes" in dialog.wrong.text())
     dialog.go.click()
     until(qtbot, lambda: ph_of(window) == 6.95)
-
-
-# a new episode
-
-
-def test_an_episode_begins_with_its_target_suggested_from_risk(qtbot, window):
-    window.actions_by_key["new_episode"].trigger()
-    dialog = dialog_of(window, NewEpisodeDialog)
-    assert dialog.target_low.placeholderText().startswith("94")
-    dialog.indication.setCurrentIndex(dialog.indication.findData("copd"))
-    assert dialog.target_low.placeholderText().startswith("88")
-    dialog.go.click()
-    assert "bed or a label" in dialog.wrong.text()
-    dialog.label.setText("Bed 11")
-    dialog.age.setText("abc")
-    dialog.go.click()
-    until(qtbot, lambda: "abc" in dialog.wrong.text())
-    dialog.age.setText("70")
-    dialog.go.click()
-    until(qtbot, lambda: window.strip.whom.text() == "Bed 11")
-    record = window.feed.answers[window.model.session.selection].record
-    assert record.latest("age") == 70
-    assert record.latest_text("indication") == "copd"
 
 
 # panels

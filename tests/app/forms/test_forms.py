@@ -182,11 +182,11 @@ def test_vital_signs_start_empty_with_the_last_beside_them(qtbot, window):
 )
 def test_a_gas_is_checked_while_it_is_typed(qtbot, window, typed, unit, agrees, told):
     form = opened(qtbot, window, Key.Key_F11, GasForm)
-    form.site.buttons["arterial"].click()
-    if unit != form.pressure_unit.key:
-        form.pressure_unit.buttons[unit].click()
+    form.gas.site.buttons["arterial"].click()
+    if unit != form.gas.pressure_unit.key:
+        form.gas.pressure_unit.buttons[unit].click()
     for key, text in typed.items():
-        type_into(qtbot, window, form.fields[key], text)
+        type_into(qtbot, window, form.gas.fields[key], text)
     assert told in form.check_plain()
     assert ("do not agree" in form.plain()) is not agrees
     form.reject()
@@ -194,15 +194,15 @@ def test_a_gas_is_checked_while_it_is_typed(qtbot, window, typed, unit, agrees, 
 
 def test_a_gas_in_h_plus_and_kilopascal_is_recorded_as_typed(qtbot, window):
     form = opened(qtbot, window, Key.Key_F11, GasForm)
-    form.acid_unit.buttons["H+"].click()
-    form.pressure_unit.buttons["kPa"].click()
-    assert form.fields["paco2"].box.accessibleName() == "PaCO2, kPa"
-    assert form.fields["ph"].box.accessibleName() == "H+, nmol/L"
+    form.gas.acid_unit.buttons["H+"].click()
+    form.gas.pressure_unit.buttons["kPa"].click()
+    assert form.gas.fields["paco2"].box.accessibleName() == "PaCO2, kPa"
+    assert form.gas.fields["ph"].box.accessibleName() == "H+, nmol/L"
     for key, text in {"ph": "56", "paco2": "9.1", "pao2": "7.9", "gas_fio2": "28"}.items():
-        type_into(qtbot, window, form.fields[key], text)
+        type_into(qtbot, window, form.gas.fields[key], text)
     assert "Say where the sample is from" in form.plain()
     assert not form.go.isEnabled()
-    form.site.buttons["capillary"].click()
+    form.gas.site.buttons["capillary"].click()
     settled(qtbot, window)
     assert "9.1 kPa (68 mmHg)" in form.plain()
     qtbot.keyClick(form, Key.Key_Return)
