@@ -48,14 +48,7 @@ class StoreDeeds(Doer):
         """List the people; the dialog adds, retires and gives PINs."""
         from app.dialogs.people import PeopleDialog
 
-        dialog = PeopleDialog(self.model, self.window.reader, self.window.theme, self.window)
-        dialog.changed.connect(self._people_changed)
-        dialog.open()
-
-    def _people_changed(self) -> None:
-        """The first person was added: from now on nobody logs unproven."""
-        if self.model.session.has_people and not self.model.session.person_proven:
-            self.window.keeping.lock_now(self.model.session.person)
+        PeopleDialog(self.model, self.window.reader, self.window.theme, self.window).open()
 
     # passphrase
 
