@@ -75,7 +75,7 @@ def read_fhir(
     facts: dict[str, str | int | float | bool | None] = {"format": "FHIR R4"}
     facts["observations"] = len(holdings.observations)
     source = SourceFacts("fhir", file.name, sha, size, facts)
-    made = [*sites.rows(), *patients.confirmations(BY), *made]
+    made = [*sites.rows(versions), *patients.confirmations(BY), *made]
     intake = judged_intake(source, made, spool, findings, existing, repeated=versions.repeated,
                            aside=aside.listed, aside_count=aside.count)  # fmt: skip
     return replace(intake, unknown_patients=tuple(patients.unknown))

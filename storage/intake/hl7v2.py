@@ -67,7 +67,7 @@ def read_hl7(
     facts: dict[str, str | int | float | bool | None] = {"format": "HL7 v2", "zone": said.zone}
     facts["messages"] = rows.count
     source = SourceFacts("hl7v2", Path(path).name, reader.sha, reader.size, facts)
-    made = [*sites.rows(), *patients.confirmations("HL7"), *made]
+    made = [*sites.rows(versions), *patients.confirmations("HL7"), *made]
     intake = judged_intake(source, made, SampleSpool(), findings, existing, whole=whole,
                            repeated=versions.repeated, aside=aside.listed, aside_count=aside.count)  # fmt: skip
     return replace(intake, unknown_patients=tuple(patients.unknown))

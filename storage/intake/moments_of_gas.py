@@ -6,16 +6,15 @@ from core.record.channels import CHANNELS, Group
 from core.record.entries import NewEntry
 from core.record.instant import Instant
 from core.record.message import refuse
-from storage.draft_batch import DraftEntry
-from storage.intake.result_versions import identity
+from storage.intake.result_versions import Result, ResultVersions, Standing, identity
 from storage.intake.row_reading import EntryRow
 
 
 class SampleSites:
-    """Notes the site of each gas; `rows` are the entries that keep them."""
+    """Notes the site of each gas; `rows` gives the entries that keep them."""
 
     def __init__(self) -> None:
-        self._sites: dict[tuple[str, Instant], tuple[str, EntryRow | None]] = {}
+        self._sites: dict[tuple[str, Instant], tuple[str, Result | None]] = {}
         self._stated: set[tuple[str, Instant]] = set()
 
     def note(self, entry: NewEntry, site: str, line: int, issued: Instant | None) -> None:
@@ -35,10 +34,11 @@ class SampleSites:
                          accepted="one site per moment")  # fmt: skip
         if site and not held:
             new = NewEntry(entry.episode, "site", entry.at, words=site, raw=site, zone=entry.zone, by=entry.by)
-            made = DraftEntry(new, identity("site", entry.episode, str(entry.at), site), issued)
-            row = EntryRow(line, made)
+            base = identity("site", entry.episode, str(entry.at), site)
+            row = Result(line, base, ("site",), new, Standing.GIVEN, "", issued)
         self._sites[key] = (site or held, row)
 
-    def rows(self) -> list[EntryRow]:
+    def rows(self, versions: ResultVersions) -> list[EntryRow]:
         """The entries of the sites that codes and specimens name, where no entry of the file states one."""
-        return [row for key, (_site, row) in self._sites.items() if row is not None and key not in self._stated]
+        named = [row for key, (_site, row) in self._sites.items() if row is not None and key not in self._stated]
+        return [row for row in map(versions.add, named) if row is not None]

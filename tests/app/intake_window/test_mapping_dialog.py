@@ -1,0 +1,169 @@
+"""The mapping dialog in real use: what it asks, what it shows, what it keeps, and that nothing is guessed."""
+
+from pathlib import Path
+
+import pytest
+from PySide6.QtCore import QPoint, QPointF, Qt
+from PySide6.QtGui import QWheelEvent
+from PySide6.QtWidgets import QApplication, QComboBox
+
+from app.dialogs.intake import IntakeDialog
+from app.intake_window.mapping_dialog import MappingDialog
+from tests.support.hl7_messages import gas, message
+from tests.support.open_window import make_store, open_window, settled, until
+
+GASES = (
+    "Ward 4\n\nSampled;pH;pCO2;pO2 (kPa);Remark\n28.03.2026 01:10;7,31;8,1;7,9;calm\n"
+    "28.03.2026 02:10;7,33;7,6;8,0;calm\n"
+)
+
+
+@pytest.fixture
+def window(qtbot, tmp_path):
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
+        yield made
+
+
+def open_mapping(qtbot, window, path: Path) -> MappingDialog:
+    dialog = window.doers.file.take_in(path)
+    assert isinstance(dialog, MappingDialog)
+    until(qtbot, lambda: dialog.looked is not None)
+    return dialog
+
+
+def choose(box: QComboBox, data: str) -> None:
+    """Choose as a person does."""
+    box.setCurrentIndex(box.findData(data))
+    box.activated.emit(box.currentIndex())
+
+
+def visible(window, kind):
+    return next(d for d in window.findChildren(kind) if d.isVisible())
+
+
+@pytest.fixture
+def gases(tmp_path):
+    path = tmp_path / "analyser.csv"
+    path.write_text(GASES)
+    return path
+
+
+def test_the_unit_and_whose_it_is_are_asked_before_anything_is_read(qtbot, window, gases):
+    window.select("bed-7")
+    dialog = open_mapping(qtbot, window, gases)
+    assert not dialog.go.isEnabled()
+    assert {m.key for m in dialog.questions()} == {"mapping.unit", "mapping.episode"}, (
+        "the episode in hand is no answer"
+    )
+    assert "kPa" in dialog.columns.item(2, 4).text()
+    assert dialog.preview.item(0, 4).text().startswith("? 8,1")
+    choose(dialog.columns.box_of("pCO2", unit=True), "kPa")
+    assert dialog.preview.item(0, 4).text() == "8.1 kPa = 61 mmHg"
+    assert dialog.columns.item(2, 4).text() == ""
+    choose(dialog.answers.episode, "bed-7")
+    assert dialog.questions() == ()
+    assert dialog.go.isEnabled()
+    assert dialog.preview.item(0, 1).text() == "28-Mar-2026 01:10"
+    dialog.reject()
+
+
+def test_from_mapping_to_record_and_recognised_next_time(qtbot, window, gases):
+    dialog = open_mapping(qtbot, window, gases)
+    choose(dialog.columns.box_of("pCO2", unit=True), "kPa")
+    choose(dialog.columns.box_of("Remark"), "")
+    choose(dialog.answers.episode, "bed-7")
+    dialog.name.setText("analyser ward 4")
+    dialog.go.click()
+    intake = visible(window, IntakeDialog)
+    until(qtbot, lambda: intake.intake is not None)
+    assert "6 entries" in intake.summary.text()
+    head = window.model.session.head
+    intake.go.click()
+    until(qtbot, lambda: window.model.session.head > head)
+    settled(qtbot, window)
+    again = open_mapping(qtbot, window, gases)
+    assert again.kept.currentData() == "analyser ward 4"
+    assert {m.key for m in again.questions()} == {"mapping.episode"}, "whose it is, is asked for each file"
+    again.reject()
+
+
+def test_a_device_table_asks_for_the_meaning_of_leak(qtbot, window, tmp_path):
+    path = tmp_path / "trend.csv"
+    rows = [f"2026-03-28 01:{m:02d},{20 + m},4{m:02d}" for m in range(50)]
+    path.write_text("\n".join(["Time,Leak (L/min),Tidal volume (mL)", *rows]))
+    dialog = open_mapping(qtbot, window, path)
+    choose(dialog.answers.episode, "bed-7")
+    assert [m.key for m in dialog.questions()] == ["mapping.leak"]
+    assert dialog.answers.leak.isVisible()
+    choose(dialog.answers.leak, "total")
+    dialog.answers.shift.setValue(-3600)
+    assert dialog.preview.item(0, 1).text() == "28-Mar-2026 00:00"
+    assert dialog.go.isEnabled()
+    dialog.reject()
+
+
+def test_changing_the_column_of_time_frees_the_old_one(qtbot, window, tmp_path):
+    path = tmp_path / "a.csv"
+    path.write_text("Sampled,Printed,pH\n2026-03-28 01:10,2026-03-28 01:20,7.31\n")
+    dialog = open_mapping(qtbot, window, path)
+    assert not dialog.columns.box_of("Sampled").isEnabled()
+    choose(dialog.answers.time, "Printed")
+    assert dialog.columns.box_of("Sampled").isEnabled()
+    assert not dialog.columns.box_of("Printed").isEnabled()
+    assert dialog.preview.item(0, 1).text() == "28-Mar-2026 01:20"
+    dialog.reject()
+
+
+def test_a_wheel_over_a_choice_changes_nothing(qtbot, window, gases):
+    dialog = open_mapping(qtbot, window, gases)
+    box = dialog.columns.box_of("pH")
+    before = box.currentIndex()
+    where, turn = QPointF(5, 5), QPoint(0, -120)
+    wheel = QWheelEvent(where, QPointF(box.mapToGlobal(where)), turn, turn, Qt.MouseButton.NoButton,
+                        Qt.KeyboardModifier.NoModifier, Qt.ScrollPhase.NoScrollPhase, False)  # fmt: skip
+    QApplication.sendEvent(box, wheel)
+    assert box.currentIndex() == before
+    dialog.reject()
+
+
+def test_a_file_that_is_no_table_says_so(qtbot, window, tmp_path):
+    path = tmp_path / "a.xlsx"
+    path.write_bytes(b"PK\x03\x04 broken")
+    dialog = window.doers.file.take_in(path)
+    until(qtbot, lambda: "damaged" in dialog.asked.text())
+    assert not dialog.go.isEnabled()
+    dialog.reject()
+
+
+def test_every_field_has_a_name(qtbot, window, gases):
+    dialog = open_mapping(qtbot, window, gases)
+    for box in dialog.findChildren(QComboBox):
+        assert box.accessibleName(), box
+    for widget in (dialog.name, dialog.preview, dialog.columns, dialog.answers.shift):
+        assert widget.accessibleName()
+    dialog.reject()
+
+
+def test_a_patient_of_a_result_file_is_confirmed_once(qtbot, window, tmp_path):
+    path = tmp_path / "results.hl7"
+    path.write_text(message(gas(), at="202603280425+0000", sent="202603280430+0000"))
+    dialog = window.doers.file.take_in(path)
+    until(qtbot, lambda: dialog.intake is not None)
+    assert not dialog.go.isEnabled()
+    box = dialog.patients.boxes["WARD-7|0042"]
+    assert box.currentText() == "", "nobody is chosen beforehand"
+    box.setCurrentText("bed-7")
+    first = dialog.intake
+    dialog.patients.buttons["WARD-7|0042"].click()
+    until(qtbot, lambda: dialog.intake is not first)
+    assert dialog.patients.isHidden()
+    assert dialog.go.isEnabled()
+    head = window.model.session.head
+    dialog.go.click()
+    until(qtbot, lambda: window.model.session.head > head)
+    path.write_text(message(gas(), order="F2", at="202603280455+0000", sent="202603280456+0000"))
+    settled(qtbot, window)
+    later = window.doers.file.take_in(path)
+    until(qtbot, lambda: later.intake is not None)
+    assert later.go.isEnabled()
+    later.reject()
