@@ -33,7 +33,8 @@ class Deed:
     @property
     def records(self) -> bool:
         """Whether it writes into the record; greyed while the past is looked at."""
-        return (self.menu == "log" and self.key != "focus_strip") or self.key in ("take_in", "close_handover")
+        also = ("take_in", "taken", "close_handover")
+        return (self.menu == "log" and self.key != "focus_strip") or self.key in also
 
     @property
     def slot(self) -> str:
@@ -63,6 +64,8 @@ DEEDS: Final = (
     Deed("take_in", "file", QT_TRANSLATE_NOOP("action", "Take in a file..."), ("Ctrl+T",),
          QT_TRANSLATE_NOOP("action", "Read a log file. You see what it holds before anything is recorded."),
          parted=True),
+    Deed("taken", "file", QT_TRANSLATE_NOOP("action", "Files taken in..."), ("Ctrl+Alt+T",),
+         QT_TRANSLATE_NOOP("action", "Which files were taken in and what each brought. One can be withdrawn whole.")),
     Deed("save_handover", "file", QT_TRANSLATE_NOOP("action", "Save handover as PDF..."), ("Ctrl+P",),
          QT_TRANSLATE_NOOP("action", "Write the handover sheet of this shift as a PDF.")),
     Deed("save_picture", "file", QT_TRANSLATE_NOOP("action", "Save picture of this page..."), ("Ctrl+Shift+S",),

@@ -188,6 +188,12 @@ class FileDeeds(Doer):
         asking.open()
         return asking
 
+    def do_taken(self) -> None:
+        """Show the files that were taken in."""
+        from app.intake_window.taken_dialog import TakenDialog
+
+        TakenDialog(self.model, self.window.reader, self.window.theme, self.window).open()
+
     def _episodes(self) -> tuple[str, ...]:
         return tuple(self.window.feed.answers) if self.window.feed is not None else ()
 
