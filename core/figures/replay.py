@@ -71,7 +71,11 @@ def channels_read(policy: Policy) -> frozenset[str]:
 def replay_moments(past: PastEpisode, policy: Policy, every: Instant = DEVICE_EVERY) -> list[Instant]:
     """The moments at which a flag can have changed: something it reads was recorded, or the machine wrote."""
     read = channels_read(policy)
-    moments = {e.recorded_at for e in past.entries if e.channel in read and e.action is not Action.FLAG}
+    moments = {
+        e.recorded_at
+        for e in past.entries
+        if e.action is Action.DUE or (e.channel in read and e.action is not Action.FLAG)
+    }
     for block in past.samples:
         if block.channel in read and block.t.size:
             first, last = int(block.t[0]), int(block.t[-1])

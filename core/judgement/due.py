@@ -3,12 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
-from dataclasses import replace
 
 from core.judgement.context import Context
 from core.judgement.due_care import reassessment_item, skin_items
 from core.judgement.due_gas import confirm_items, gas_items, repeat_items
-from core.judgement.due_item import Item
+from core.judgement.due_item import Item, closed_by_word
 from core.judgement.due_tasks import (
     break_end_items,
     ceiling_item,
@@ -21,8 +20,7 @@ from core.judgement.due_tasks import (
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.timing import comfort_since
 from core.judgement.shapes import DueFigure, FlagFigure
-from core.record.entries import Action
-from core.record.instant import HOUR, Instant
+from core.record.instant import HOUR
 
 GASES = frozenset({"gas", "repeat_gas", "arterial_gas"})
 KEYS = (
@@ -43,7 +41,7 @@ def due_keys() -> tuple[str, ...]:
 def due_items(ctx: Context, flags: Iterable[FlagFigure], seen: Observed | None = None) -> tuple[DueFigure, ...]:
     """What is due as of the moment, the most urgent first; what was done in the last 12 h comes last."""
     seen = seen if seen is not None else Observed(ctx)
-    items = [_by_person(seen, item) for item in _gathered(seen, tuple(flags))]
+    items = [closed_by_word(item, seen.episode.transitions) for item in _gathered(seen, tuple(flags))]
     shown = (i for i in items if _shown(seen, i))
     figures = [i.figure(ctx.as_of) for i in shown]
     return tuple(sorted(figures, key=lambda d: (ORDER[d.state], d.due_until, d.what)))
@@ -71,20 +69,3 @@ def _shown(seen: Observed, item: Item) -> bool:
     if end is not None and end <= seen.as_of and item.what not in AFTER_END:
         return False
     return item.what not in GASES or comfort_since(seen) is None
-
-
-def _by_person(seen: Observed, item: Item) -> Item:
-    """A person's word closes an item: `done` or `not needed`, at or after its beginning, unless it was taken back
-    (`open again`)."""
-    if item.done_at is not None:
-        return item
-    begun: Instant = min(item.due_from, item.anchor_at if item.anchor_at is not None else item.due_from)
-    closed = item
-    for entry in seen.episode.transitions:
-        if entry.action is not Action.DUE or entry.channel != item.what or entry.at < begun:
-            continue
-        if entry.words == "open again":
-            closed = item
-        elif entry.words in ("done", "not needed") and closed is item:
-            closed = replace(item, done_at=entry.at, done_by=entry.by or entry.id)
-    return closed

@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from core.judgement.due_item import Item
+from core.judgement.due_item import Item, words_on
 from core.judgement.markers.observed import Observed
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
@@ -30,13 +30,18 @@ def skin_items(seen: Observed) -> Iterator[Item]:
     if rule is None or not rule.on or begun is None:
         return
     looks = [int(t) for t in seen.episode.text("skin_check").t if int(t) > begun]
+    words = {e.at: e for e in words_on(seen.episode.transitions, "skin_check") if e.at > begun}
+    looks = sorted({*looks, *words})
     ends = [*looks, None]
     for last, done in zip([begun, *looks], ends, strict=True):
         if (seen.settings.at(done or seen.as_of).interface or "") in NO_SKIN_UNDER:
             continue
         item = Item("skin_check", Message("due.skin_check", {"last_at": last}), last + int(rule.from_min * MINUTE),
                     last + int(rule.until_min * MINUTE), rule.soon_min)  # fmt: skip
-        yield item if done is None else replace(item, done_at=done, done_by=seen.entry_id("skin_check", done))
+        if done is not None:
+            by = words[done].by or words[done].id if done in words else seen.entry_id("skin_check", done)
+            item = replace(item, done_at=done, done_by=by)
+        yield item
 
 
 def assessed(seen: Observed) -> list[Instant]:
@@ -56,6 +61,7 @@ def reassessment_item(seen: Observed) -> Item | None:
     anchor = max(anchor, begun)
     looks = assessed(seen)
     after = [t for t in looks if t >= anchor + int(rule.from_min * MINUTE)]
+    after = sorted([*after, *(e.at for e in words_on(seen.episode.transitions, "reassessment") if e.at >= anchor)])
     if not after:
         because = Message("due.reassessment", {"anchor_at": anchor, "last_at": looks[-1] if looks else None})
         return Item("reassessment", because, anchor + int(rule.from_min * MINUTE),

@@ -2,11 +2,33 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
 
 from core.judgement.shapes import DueFigure
+from core.record.entries import Action, Entry
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
+
+CLOSING = frozenset({"done", "not needed"})
+OPEN_AGAIN = "open again"
+"""A person's words on a due item, and the one that takes them back."""
+
+
+RECURRING = frozenset({"skin_check", "reassessment"})
+
+
+def words_on(transitions: Iterable[Entry], what: str) -> list[Entry]:
+    """The words that close a due item and were not taken back, by time."""
+    standing: list[Entry] = []
+    for entry in transitions:
+        if entry.action is not Action.DUE or entry.channel != what:
+            continue
+        if entry.words in CLOSING:
+            standing.append(entry)
+        elif entry.words == OPEN_AGAIN and standing:
+            standing.pop()
+    return standing
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,3 +59,15 @@ class Item:
         """The item as it is shown."""
         return DueFigure(self.what, self.because, self.due_from, self.due_until, self.state(as_of), self.done_by,
                          self.done_at, self.anchor_at)  # fmt: skip
+
+
+def closed_by_word(item: Item, transitions: Iterable[Entry]) -> Item:
+    """The item closed by a person's word (`done`, `not needed`) at or after its beginning, unless it was taken back.
+
+    What comes again and again counts its words as looks instead: closing one must not silence the next.
+    """
+    if item.done_at is not None or item.what in RECURRING:
+        return item
+    begun = item.due_from if item.anchor_at is None else min(item.due_from, item.anchor_at)
+    said = next((e for e in words_on(transitions, item.what) if e.at >= begun), None)
+    return item if said is None else replace(item, done_at=said.at, done_by=said.by or said.id)

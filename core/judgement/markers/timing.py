@@ -6,7 +6,7 @@ from collections.abc import Iterable
 
 from core.judgement.due_care import skin_items
 from core.judgement.due_gas import confirm_items, gas_items, repeat_items
-from core.judgement.due_item import Item
+from core.judgement.due_item import Item, closed_by_word
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Spell
 from core.judgement.policy_sections import MarkerRule
@@ -37,8 +37,9 @@ def _overdue(items: Iterable[Item], as_of: Instant, rest: Instant | None) -> lis
 
 
 def gas_overdue(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
-    """A gas that is past its latest time and whose result is not awaited."""
+    """A gas that is past its latest time, whose result is not awaited, and that nobody called done or not needed."""
     items = [*seen.once(gas_items), *seen.once(repeat_items), *confirm_items(seen)]
+    items = [closed_by_word(item, seen.episode.transitions) for item in items]
     return _overdue(items, seen.as_of, comfort_since(seen))
 
 

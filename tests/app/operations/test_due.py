@@ -52,9 +52,21 @@ def test_what_is_not_due_is_refused(store: Store) -> None:
         with pytest.raises(RecordError) as refused:
             due.close(store, "CD", NOW, due.DueRequest("A", what))
         assert refused.value.message.key == "due_word.not_due"
-    due.close(store, "CD", NOW, due.DueRequest("A", "skin_check"))
+    due.close(store, "CD", NOW, due.DueRequest("A", "ceiling"))
     with pytest.raises(RecordError):
-        due.close(store, "CD", NOW + MINUTE, due.DueRequest("A", "skin_check"))
+        due.close(store, "CD", NOW + MINUTE, due.DueRequest("A", "ceiling"))
+
+
+@pytest.mark.parametrize(("what", "next_after"), [("skin_check", 4 * HOUR), ("reassessment", 4 * HOUR)])
+@pytest.mark.parametrize("words", [due.DONE, due.NOT_NEEDED])
+def test_closing_what_comes_again_asks_for_the_next(store: Store, what: str, next_after: int, words: str) -> None:
+    due.close(store, "CD", NOW, due.DueRequest("A", what, words, "asleep"))
+    found = figures.of_episode(store, "AB", NOW + HOUR, figures.EpisodeRequest("A", NOW + HOUR)).value.figures.due
+    (open_one,) = [d for d in found if d.what == what and d.state != "done"]
+    assert (open_one.state, open_one.due_until) == ("open", NOW + next_after)
+    later = NOW + next_after + MINUTE
+    late = figures.of_episode(store, "AB", later, figures.EpisodeRequest("A", later)).value.figures.due
+    assert [d.state for d in late if d.what == what and d.state != "done"] == ["overdue"]
 
 
 def test_the_word_can_be_taken_back(store: Store) -> None:

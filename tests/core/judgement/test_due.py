@@ -235,11 +235,21 @@ def test_oxygen_is_reviewed_while_out_of_range():
 
 def test_a_persons_word_closes_an_item():
     made = entries(BASE)
-    word = NewEntry("E", "skin_check", at("04:30"), words="not needed", by="CD", action=Action.DUE, reason="asleep")
-    record = build([*made, recorded(word, len(made) + 1, "word", at("04:30"))])
-    ctx = judged(record, at("05:30"), shipped_policy())
-    (item,) = [d for d in due_items(ctx, evaluate(ctx)) if d.what == "skin_check"]
-    assert (item.state, item.done_by) == ("done", "CD")
+
+    def closed(what, clock, word="not needed"):
+        new = NewEntry("E", what, at(clock), words=word, by="CD", action=Action.DUE, reason="asleep")
+        made.append(recorded(new, len(made) + 1, f"word {clock}", at(clock)))
+        ctx = judged(build(made), at("05:30"), shipped_policy())
+        flags = evaluate(ctx)
+        overdue = [f.ended_at for f in flags if f.marker == "gas_overdue"]
+        return [(d.state, d.done_by) for d in due_items(ctx, flags) if d.what == what], overdue
+
+    assert closed("ceiling", "04:30")[0] == []  # decided before support: nothing to close
+    assert closed("skin_check", "04:31")[0] == [("open", None), ("done", "CD")]  # the next look is due
+    items, overdue = closed("gas", "05:00")
+    assert (items, overdue) == ([("done", "CD")], [at("05:00")])  # the flag stood from 03:00 and ends with the word
+    items, overdue = closed("gas", "05:10", "open again")
+    assert (items, overdue) == ([("overdue", None)], [None])
 
 
 def test_nothing_is_missed_over_a_clock_change():
