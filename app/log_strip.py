@@ -186,8 +186,10 @@ class LogStrip(QFrame):
         self.set_text("checked no change")
 
     def told(self) -> None:
-        """One key: whom was told, with the answer to be typed."""
-        self.set_text("told ")
+        """One key: whom was told, with the answer to be typed. The responsible clinician stands there already."""
+        contact = self._record.latest_text("contact") if self._record is not None else None
+        self.set_text(f"told {contact}: " if contact else "told ")
+        self.line.end(False)
 
     def focus(self) -> None:
         """Take the focus."""
@@ -225,6 +227,11 @@ class LogStrip(QFrame):
         return LineRequest(self._record.key, self.line.text(), self._zone, confirmed)
 
     def _previewed(self, outcome: Outcome[Preview]) -> None:
+        if any(r.channel.key == "told" and not r.words for r in outcome.value.line.readings):
+            self._enter_pending = False
+            ask = self.tr("Type whom, a colon, and what they answered, e.g. told registrar: comes now.")
+            self._become(State.REFUSED, self._mark(self.tr("Told whom?"), ask))
+            return
         self._preview = outcome.value
         words = preview_words(outcome.value, self._record, self._model.session.now(), self._reader())
         if self._enter_pending and not words.questions:

@@ -8,7 +8,7 @@ from PySide6.QtGui import QColor, QPainter
 from PySide6.QtWidgets import QGraphicsItem
 
 from app.chart.marks import fitted
-from app.chart.ribbon import draw_ticks
+from app.chart.event_rail import draw_on_rail
 from app.chart.row import FRONT, ClockRow, Layer, RowItem
 from app.chart.shapes import MICROSECONDS, Tick
 from app.chart.time_ticks import ClockMark, time_word
@@ -165,5 +165,5 @@ class EventRow(ClockRow):
         return float(self.frame().x(self.seconds(instant)))
 
     def _draw_front(self, painter: QPainter) -> None:
-        draw_ticks(painter, self.theme, self.view.rect(), self.ticks, self._column, lines=2)
+        draw_on_rail(painter, self.theme, self.view.rect(), self.ticks, self._column, lines=2)
         self.draw_now(painter)

@@ -13,7 +13,7 @@ from app.operations.entry import Preview
 from app.phrases import channel_name
 from app.words import Reader, sentence
 from core.judgement.setting_change import effect_of_change
-from core.record.channels import Group
+from core.record.channels import Group, Kind
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
 from core.record.reading import Reading
@@ -58,6 +58,8 @@ def reading_words(reading: Reading, reader: Reader) -> str:
     name = channel_name(reading.channel.key)
     if reading.value is None:
         return name
+    if reading.channel.kind is Kind.INSTANT:
+        return f"{name} {reader.time(int(reading.number or 0))}"
     if isinstance(reading.value, str):
         return (
             f"{name}: {reading.value}"
