@@ -7,6 +7,7 @@ from PySide6.QtWidgets import QDialog, QDialogButtonBox, QLabel, QVBoxLayout, QW
 
 from app.cautions import cautions, intended_use
 from app.theme import Theme
+from storage.codes import LOINC_NOTICE
 
 
 class AboutDialog(QDialog):
@@ -25,7 +26,7 @@ class AboutDialog(QDialog):
         built = self.tr("Free software under the Mozilla Public License 2.0. Built on Qt {qt}.").format(
             qt=qVersion()
         )
-        for text in (intended_use(), *cautions(), built):
+        for text in (intended_use(), *cautions(), built, LOINC_NOTICE):
             label = QLabel(text)
             label.setWordWrap(True)
             label.setTextFormat(Qt.TextFormat.PlainText)
@@ -33,7 +34,7 @@ class AboutDialog(QDialog):
         buttons = QDialogButtonBox(QDialogButtonBox.StandardButton.Close)
         buttons.rejected.connect(self.close)
         column.addWidget(buttons)
-        self.resize(theme.px(600), theme.px(420))
+        self.resize(theme.px(600), theme.px(480))
 
 
 def _version() -> str:

@@ -27,7 +27,12 @@ class AnswersForm(QWidget):
         super().__init__(parent)
         self._filling = False
         self.time, self.clock, self.order, self.zone = QComboBox(), QComboBox(), QComboBox(), QComboBox()
-        self.repeated, self.decimal, self.writer, self.leak = QComboBox(), QComboBox(), QComboBox(), QComboBox()
+        self.repeated, self.decimal, self.writer, self.leak = (
+            QComboBox(),
+            QComboBox(),
+            QComboBox(),
+            QComboBox(),
+        )
         self.episode, self.person = QComboBox(), QComboBox()
         self.shift = QDoubleSpinBox()
         self.shift.setRange(-_MOST_SHIFT_S, _MOST_SHIFT_S)
@@ -51,6 +56,10 @@ class AnswersForm(QWidget):
             (self.tr("Person stands in"), self.person), (self.tr("Leak is"), self.leak),
             (self.tr("Add to every time"), self.shift),
         )  # fmt: skip
+        self._add_rows(theme)
+        self.shift.valueChanged.connect(self._tell)
+
+    def _add_rows(self, theme: Theme) -> None:
         for label, field in self._rows:
             field.setAccessibleName(label)
             word = QLabel(label)
@@ -64,10 +73,15 @@ class AnswersForm(QWidget):
                 line = field.lineEdit()
                 if line is not None:
                     line.editingFinished.connect(self._tell)
-        self.shift.valueChanged.connect(self._tell)
 
     def show_answers(
-        self, mapping: Mapping, header: Sequence[str], episodes: Sequence[str], episode: str, *, has_offsets: bool
+        self,
+        mapping: Mapping,
+        header: Sequence[str],
+        episodes: Sequence[str],
+        episode: str,
+        *,
+        has_offsets: bool,
     ) -> None:
         """Show a mapping's answers, with what is open as a question mark."""
         self._filling = True
@@ -82,10 +96,16 @@ class AnswersForm(QWidget):
         _fill(self.writer, [("?", ""), *zip(words, WRITERS, strict=True)], mapping.written_by)
         _fill(self.person, [(self.tr("no column"), ""), *columns], mapping.by_column)
         _fill(self.leak, [("?", ""), *((d, d) for d in LEAK_DEFINITIONS)], mapping.leak_definition)
-        twice = [(self.tr("refuse it"), ""), (self.tr("the first"), "first"), (self.tr("the second"), "second")]
+        twice = [
+            (self.tr("refuse it"), ""),
+            (self.tr("the first"), "first"),
+            (self.tr("the second"), "second"),
+        ]
         _fill(self.repeated, twice, use.repeated)
         zones = [(z, z) for z in sorted(available_timezones())]
-        _fill(self.zone, [(self.tr("each time has its offset") if has_offsets else "?", ""), *zones], use.zone)
+        _fill(
+            self.zone, [(self.tr("each time has its offset") if has_offsets else "?", ""), *zones], use.zone
+        )
         of = [("?", ""), *((e, e) for e in episodes)]
         of += [(self.tr("column {name}").format(name=name), _COLUMN + name) for name in header]
         _fill(self.episode, of, _COLUMN + mapping.episode_column if mapping.episode_column else episode)

@@ -49,7 +49,13 @@ class ColumnTable(QTableWidget):
         self._units: list[QComboBox] = []
         self.setAccessibleName(self.tr("Columns of the table"))
         self.setHorizontalHeaderLabels(
-            [self.tr("Column"), self.tr("First values"), self.tr("What it is"), self.tr("Unit"), self.tr("To answer")]
+            [
+                self.tr("Column"),
+                self.tr("First values"),
+                self.tr("What it is"),
+                self.tr("Unit"),
+                self.tr("To answer"),
+            ]
         )
         self.verticalHeader().hide()
         self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
@@ -152,7 +158,9 @@ class ColumnTable(QTableWidget):
 
     def box_of(self, column: str, *, unit: bool = False) -> QComboBox:
         """The choice of a column's channel, or of its unit."""
-        row = next(r for r in range(self.rowCount()) if (i := self.item(r, 0)) is not None and i.text() == column)
+        row = next(
+            r for r in range(self.rowCount()) if (i := self.item(r, 0)) is not None and i.text() == column
+        )
         return (self._units if unit else self._channels)[row]
 
 

@@ -17,8 +17,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "mapping.no_time": "When was it? Accepted: {accepted}.",
     "intake.episode_not_asked":
         "A log file names its episodes itself; '{value}' was named beside it. Accepted: {accepted}.",
-    "mapping.none_fits":
-        "No mapping that is kept fits {path}, whose columns are: {columns}. Accepted: {accepted}.",
+    "mapping.none_fits": "No mapping that is kept fits {path}, whose columns are: {columns}. Accepted: {accepted}.",
     "mapping.nothing_named": "Nothing was named. Accepted: {accepted}.",
     "mapping.nothing": "No column is mapped. Accepted: {accepted}.",
     "mapping.time_order": "How are the dates of column '{column}' written? Accepted: {accepted}.",

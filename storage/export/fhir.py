@@ -129,7 +129,9 @@ def _value(known: Channel, e: Entry) -> Json:
     if known.kind is Kind.INSTANT:
         return {"valueDateTime": iso(int(e.number or 0))}
     if known.kind is Kind.CHOICE:
-        return {"valueCodeableConcept": {"coding": [{"system": LOCAL_SYSTEM, "code": e.words}], "text": e.words}}
+        return {
+            "valueCodeableConcept": {"coding": [{"system": LOCAL_SYSTEM, "code": e.words}], "text": e.words}
+        }
     return {"valueString": e.words} if e.words else {"valueBoolean": True}
 
 
@@ -152,7 +154,10 @@ def _sampled(block: DeviceSamples) -> Iterator[Json]:
     known, n, start = CHANNELS[block.channel], block.t.size, 0
     while start < n:
         end = _end_of_run(block, start)
-        t, step = block.t[start:end], int(block.t[start + 1] - block.t[start]) if end - start > 1 else 1_000_000
+        t, step = (
+            block.t[start:end],
+            int(block.t[start + 1] - block.t[start]) if end - start > 1 else 1_000_000,
+        )
         words = ["E" if np.isnan(v) else number_text(v) for v in block.v[start:end].tolist()]
         made = _common(block.episode, known)
         span = {"start": iso(int(t[0])), "end": iso(int(t[-1]))}

@@ -136,4 +136,3 @@ def cell_text(value: object) -> str:
     if isinstance(value, timedelta):
         return str(value)
     return "" if value is None else str(value)
-

@@ -11,7 +11,17 @@ from storage.intake.findings import unreadable
 HEAD = 256 * 1024
 """Bytes looked at to tell how a file is written."""
 DELIMITERS = (",", ";", "\t", "|")
-ENCODINGS = ("utf-8", "utf-8-sig", "utf-16", "utf-16-le", "utf-16-be", "cp1252", "latin-1", "iso8859-15", "cp437")
+ENCODINGS = (
+    "utf-8",
+    "utf-8-sig",
+    "utf-16",
+    "utf-16-le",
+    "utf-16-be",
+    "cp1252",
+    "latin-1",
+    "iso8859-15",
+    "cp437",
+)
 _BOMS = ((b"\xef\xbb\xbf", "utf-8-sig"), (b"\xff\xfe", "utf-16"), (b"\xfe\xff", "utf-16"))
 _LOOKED_AT = 60
 

@@ -66,7 +66,9 @@ def _row(
         parts = [(long.value, key, unit)]
     else:
         parts = [(c.column, c.channel, c.unit) for c in mapping.used]
-    read = tuple(_cell(column, key, cell(column), unit, mapping) for column, key, unit in parts if key in CHANNELS)
+    read = tuple(
+        _cell(column, key, cell(column), unit, mapping) for column, key, unit in parts if key in CHANNELS
+    )
     return PreviewRow(line, at, shown, why, episode, read)
 
 

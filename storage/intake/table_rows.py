@@ -135,7 +135,10 @@ class TableRows:
         texts = [x.strip() for x in rows.columns[self._place[self._mapping.episode_column]]]
         for i, text in enumerate(texts):
             if not text or len(text) > _MOST_KEY:
-                values: dict[str, Value] = {"value": text[:80], "accepted": f"a key of 1 to {_MOST_KEY} letters"}
+                values: dict[str, Value] = {
+                    "value": text[:80],
+                    "accepted": f"a key of 1 to {_MOST_KEY} letters",
+                }
                 message = Message("entry.no_episode", values)
                 self._findings.refuse(int(rows.lines[i]), self._mapping.episode_column, text, message)
                 rows.good[i] = False
@@ -154,7 +157,9 @@ class TableRows:
         for (word, unit), places in groups.items():
             key = long.names.get(word)
             if key is None:
-                error = refuse("mapping.word_unknown", value=word[:80], accepted="a word that the mapping names")
+                error = refuse(
+                    "mapping.word_unknown", value=word[:80], accepted="a word that the mapping names"
+                )
                 for i in places:
                     self._findings.refuse(int(rows.lines[i]), long.channel, word, error.message)
             elif key:
@@ -166,7 +171,13 @@ class TableRows:
                 self._take_unit(part, of, long.value, CHANNELS[key], unit, texts)
 
     def _take_unit(
-        self, rows: _Rows, episodes: Sequence[str], column: str, known: Channel, unit: str, texts: Sequence[str]
+        self,
+        rows: _Rows,
+        episodes: Sequence[str],
+        column: str,
+        known: Channel,
+        unit: str,
+        texts: Sequence[str],
     ) -> None:
         """A column whose unit the table itself names: it must be one of the channel's, and must be there."""
         if known.kind is Kind.NUMBER:
@@ -181,7 +192,13 @@ class TableRows:
         self._take_column(rows, episodes, column, known, unit if known.kind is Kind.NUMBER else "", texts)
 
     def _take_column(
-        self, rows: _Rows, episodes: Sequence[str], column: str, known: Channel, unit: str, texts: Sequence[str]
+        self,
+        rows: _Rows,
+        episodes: Sequence[str],
+        column: str,
+        known: Channel,
+        unit: str,
+        texts: Sequence[str],
     ) -> None:
         if is_sampled(self._mapping, known.key):
             self._take_samples(rows, episodes, column, known, unit, texts)
@@ -196,7 +213,13 @@ class TableRows:
                     self.entries += [made] if made is not None else []
 
     def _take_samples(
-        self, rows: _Rows, episodes: Sequence[str], column: str, known: Channel, unit: str, texts: Sequence[str]
+        self,
+        rows: _Rows,
+        episodes: Sequence[str],
+        column: str,
+        known: Channel,
+        unit: str,
+        texts: Sequence[str],
     ) -> None:
         cells = self._cells.setdefault((known.key, unit), DeviceCells(known, unit, self._mapping.decimal))
         distinct = {text: cells.read(text) for text in set(texts)}
@@ -220,7 +243,13 @@ class TableRows:
                                 decimals)  # fmt: skip
 
     def _take_changes(
-        self, rows: _Rows, episodes: Sequence[str], column: str, known: Channel, unit: str, texts: Sequence[str]
+        self,
+        rows: _Rows,
+        episodes: Sequence[str],
+        column: str,
+        known: Channel,
+        unit: str,
+        texts: Sequence[str],
     ) -> None:
         """What a device writes in every row and a person sets now and then: only its changes are entries."""
         before: tuple[str, str] | None = None
@@ -262,5 +291,3 @@ def _by_rows(block: RowBlock) -> RowBlock:
 def _no_unit(known: Channel) -> str:
     accepted = ", ".join(u.name for u in known.units)
     raise refuse("unit.missing", channel=known.key, value="", accepted=accepted)
-
-

@@ -8,7 +8,11 @@ from typing import Any
 
 Json = dict[str, Any]
 LOINC, UCUM = "http://loinc.org", "http://unitsofmeasure.org"
-PATIENT: Json = {"resourceType": "Patient", "id": "p1", "identifier": [{"system": "urn:ward", "value": "0042"}]}
+PATIENT: Json = {
+    "resourceType": "Patient",
+    "id": "p1",
+    "identifier": [{"system": "urn:ward", "value": "0042"}],
+}
 
 
 def observation(code: str = "2744-1", value: str = "7.40", unit: str = "[pH]", **more: Any) -> Json:

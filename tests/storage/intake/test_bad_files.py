@@ -172,7 +172,9 @@ def test_hostile_text(tmp_path: Path, data: bytes, key: str) -> None:
 def test_a_wrong_encoding_named_by_a_person_is_refused_by_line(tmp_path: Path, store: Store) -> None:
     path = tmp_path / "a.csv"
     path.write_bytes("time,pH,note\n2026-03-28 00:30,7.4,müde\n".encode("cp1252"))
-    intake = operations.read(store, "AB", NOW, ReadRequest(path, MAPPING, episode="E1", encoding="utf-8")).value
+    intake = operations.read(
+        store, "AB", NOW, ReadRequest(path, MAPPING, episode="E1", encoding="utf-8")
+    ).value
     assert [(r.line, r.message.key) for r in intake.refusals] == [(2, "file.encoding")]
 
 

@@ -112,7 +112,11 @@ def test_a_gas_pressure_without_unit_is_asked_with_a_hint_and_never_guessed(writ
 
 @pytest.mark.parametrize(
     ("cells", "hint"),
-    [("40.1 55.0", "proposal.likely_mmhg"), ("4.0 12.0", "proposal.likely_kpa"), ("14 45", "proposal.either_unit")],
+    [
+        ("40.1 55.0", "proposal.likely_mmhg"),
+        ("4.0 12.0", "proposal.likely_kpa"),
+        ("14 45", "proposal.either_unit"),
+    ],
 )
 def test_hints_of_gas_pressures(write: Write, cells: str, hint: str) -> None:
     low, high = cells.split()
@@ -147,7 +151,7 @@ def test_a_cell_that_is_wrong_is_named_and_the_rest_stays_readable(write: Write)
         "time,pH,pCO2 (mmHg),note\n"
         "2026-03-27 22:10,7.31,61,ok\n"
         "2026-03-27 22:20,9.31,x,=HYPERLINK(1)\n"
-        "2026-03-27 22:30,\"7,31\",> 60,-2 to bed\n"
+        '2026-03-27 22:30,"7,31",> 60,-2 to bed\n'
         "2026-03-27,7.31,60,a\n"
         "1900-01-01 00:00,7.31,60,a\n"
         "2099-01-01 00:00,7.31,60,a\n"
@@ -196,7 +200,9 @@ def test_a_long_table_names_its_channels_and_units(write: Write) -> None:
     )
     proposal = propose(open_table(path), ZONE)
     long = proposal.mapping.long
-    assert long == LongUse("Test", "Result", "Unit", {"pCO2": "paco2", "pH": "ph", "Sodium": "", "pO2": "pao2"}, {})
+    assert long == LongUse(
+        "Test", "Result", "Unit", {"pCO2": "paco2", "pH": "ph", "Sodium": "", "pO2": "pao2"}, {}
+    )
     intake = read_table(path, replace(proposal.mapping, written_by="person"), now=NOW)
     assert [(d.entry.episode, d.entry.channel, d.entry.raw_unit) for d in intake.entries] == [
         ("E1", "paco2", "kPa"), ("E2", "ph", "pH"),
@@ -214,7 +220,11 @@ def test_a_word_of_a_long_table_that_the_mapping_does_not_name_is_refused(write:
 
 def test_xlsx_and_ods_read_like_the_same_table_as_text(tmp_path: Path) -> None:
     """28-Mar-2026 00:30 is day 46109.0208333 of a spreadsheet's count."""
-    rows = [["Sampled", "pH", "pCO2 (kPa)"], [date(46109 + 0.5 / 24), 7.4, 8.1], [date(46109 + 1 / 24), 7.31, 7.0]]
+    rows = [
+        ["Sampled", "pH", "pCO2 (kPa)"],
+        [date(46109 + 0.5 / 24), 7.4, 8.1],
+        [date(46109 + 1 / 24), 7.31, 7.0],
+    ]
     xlsx = write_xlsx(tmp_path / "gases.xlsx", sheet_xml([["Ward 4"], [], *rows]))
     table = open_table(xlsx)
     assert (table.dialect.header_line, table.dialect.sheet, table.sheets) == (3, "Gases", ("Gases",))
@@ -238,7 +248,11 @@ def test_a_mapping_is_kept_and_recognised_whatever_the_order_of_columns(write: W
         kept_mapping(store, "other")
     assert refused.value.message.values["accepted"] == "analyser"
     assert from_text(to_text(mapping)) == mapping
-    for text, key in (("{", "mapping.unreadable"), ('{"format": 99}', "mapping.newer"), ("[]", "mapping.unreadable")):
+    for text, key in (
+        ("{", "mapping.unreadable"),
+        ('{"format": 99}', "mapping.newer"),
+        ("[]", "mapping.unreadable"),
+    ):
         with pytest.raises(RecordError) as refused:
             from_text(text)
         assert refused.value.message.key == key
@@ -249,7 +263,10 @@ def test_a_mapping_whose_column_is_gone_says_which(write: Write) -> None:
     mapping = answered(path).with_column("lactate", "lactate", "mmol/L")
     with pytest.raises(RecordError) as refused:
         read_table(path, mapping, now=NOW, answers=Answers("E1"))
-    assert (refused.value.message.key, refused.value.message.values["column"]) == ("mapping.column_gone", "lactate")
+    assert (refused.value.message.key, refused.value.message.values["column"]) == (
+        "mapping.column_gone",
+        "lactate",
+    )
 
 
 def test_the_preview_shows_what_will_be_recorded_and_what_is_open(write: Write) -> None:
