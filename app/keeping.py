@@ -11,11 +11,13 @@ from app.failure import Failure
 from app.lock import IdleWatch, Lock
 from app.lock_page import Way
 from app.notice_strip import NoticeStrip
+from app.notices import Surroundings
 from app.operations import store as store_operations
 from app.operations.outcome import Outcome
 from app.session import Changed, Session, SessionModel, What
 from app.theme import Theme
 from app.words import sentence
+from core.record.message import Message
 
 if TYPE_CHECKING:
     from app.opened import Opened
@@ -38,6 +40,8 @@ class Keeping(QObject):
         self._told: tuple[str, ...] = ()
         self.notices = NoticeStrip(window.theme)
         self.notices.again_wanted.connect(self._try_again)
+        self.surroundings = Surroundings(self)
+        self.surroundings.told.connect(self._surroundings_told)
         self._retry = QTimer(self)
         self._retry.setInterval(RETRY_MS)
         self._retry.timeout.connect(self._try_again)
@@ -60,11 +64,13 @@ class Keeping(QObject):
         self._drafts = DraftKeeper(opened, self)
         self._drafts.recovered.connect(self._recovered)
         opened.model.changed.connect(self._changed)
+        self.surroundings.start(opened.model.session.store_path)
 
     def closing(self) -> None:
         """The session ends; what is typed is kept."""
         self._retry.stop()
         self.watch.stop()
+        self.surroundings.stop()
         if self._drafts is not None:
             self._drafts.close()
             self._drafts.deleteLater()
@@ -201,6 +207,9 @@ class Keeping(QObject):
         for notice in found:
             self.notices.tell(notice.key, sentence(notice, self._window.reader), lasting=True)
         self._told = tuple(n.key for n in found)
+
+    def _surroundings_told(self, key: str, happened: Message | None) -> None:
+        self.notices.tell(key, sentence(happened, self._window.plain_reader) if happened is not None else "")
 
     def _recovered(self, label: str) -> None:
         told = self.tr(

@@ -34,6 +34,7 @@ def templates() -> Mapping[str, str]:
         forms,
         judgements,
         names,
+        notices,
         people,
         refusals,
         responses,
@@ -42,7 +43,8 @@ def templates() -> Mapping[str, str]:
     )
 
     found: dict[str, str] = {}
-    catalogues = refusals, surroundings, findings, responses, judgements, names, people, exchange, tables, forms
+    catalogues = (refusals, surroundings, findings, responses, judgements, names, people, exchange, tables, forms,
+                  notices)  # fmt: skip
     for catalogue in catalogues:
         twice = found.keys() & catalogue.TEMPLATES.keys()
         if twice:
