@@ -153,10 +153,9 @@ def _section(section: str, title: str, numbers: msgspec.Struct, told: list[Polic
     for field in msgspec.structs.fields(numbers):
         value, path = getattr(numbers, field.name), f"{section}.{field.name}"
         name, unit = _split(field.name)
+        words, source, sure = _plain(value), translate("policy", "the ward's choice"), ""
         if isinstance(value, Limit):
-            words, source, sure = _written(value, unit), value.source, value.sure
-        else:
-            words, source, sure = _plain(value), translate("policy", "the ward's choice"), ""
+            words, source, sure = _written(value, unit), value.source, str(value.sure)
         group = translate("policy", title)
         yield Rule(path, group, name, True, "", words, "", source, sure, (), _differs(path, told))
 

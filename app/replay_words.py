@@ -83,7 +83,7 @@ def _head(answer: ReplayAnswer, policies: Sequence[NamedPolicy], reader: Reader)
 
 
 def _raised(answer: ReplayAnswer, reader: Reader) -> str:
-    heads = ("Episode", "Raised", "Met since", "Flag", "Tier", "Until")
+    heads: tuple[str, ...] = ("Episode", "Raised", "Met since", "Flag", "Tier", "Until")
     if _two(answer):
         heads = ("By", *heads)
     rows = []
