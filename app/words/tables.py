@@ -15,8 +15,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "mapping.newer": "The mapping is of format {format}, newer than this program reads ({accepted}).",
     "mapping.no_name": "The mapping needs a name. Accepted: {accepted}.",
     "mapping.no_time": "When was it? Accepted: {accepted}.",
-    "intake.episode_not_asked":
-        "A log file names its episodes itself; '{value}' was named beside it. Accepted: {accepted}.",
+    "intake.episode_not_asked": "A log file names its own episodes, not '{value}'. Accepted: {accepted}.",
     "mapping.none_fits": "No mapping that is kept fits {path}, whose columns are: {columns}. Accepted: {accepted}.",
     "mapping.nothing_named": "Nothing was named. Accepted: {accepted}.",
     "mapping.nothing": "No column is mapped. Accepted: {accepted}.",

@@ -9,6 +9,8 @@ from pathlib import Path
 from storage.intake.columns import REQUIRED
 
 _HEAD = 4096
+_MEANT_AS_LOG = 5
+"""Names of the log file's header that show it is meant as one: what it lacks is then said by its reader."""
 _HL7 = (b"MSH", b"FHS", b"BHS")
 
 
@@ -39,4 +41,4 @@ def kind_of(path: Path | str) -> FileKind:
         names = {c.strip().lower() for c in next(csv.reader([first]), [])}
     except csv.Error:
         names = set()
-    return FileKind.LOG_CSV if names >= set(REQUIRED) else FileKind.TABLE
+    return FileKind.LOG_CSV if len(names & set(REQUIRED)) >= _MEANT_AS_LOG else FileKind.TABLE

@@ -230,6 +230,7 @@ def test_kinds_are_told_by_content_and_not_by_name(tmp_path: Path) -> None:
     path = tmp_path / "a.pdf"
     for data, kind in (
         (b"episode,at,channel,value,unit,by,note\n", FileKind.LOG_CSV),
+        (b"episode,at,channel,value,unit\n", FileKind.LOG_CSV),
         (b"\x0bMSH|^~\\&|", FileKind.HL7V2),
         (b"\xef\xbb\xbf {", FileKind.FHIR),
         (b"time,pH", FileKind.TABLE),
