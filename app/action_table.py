@@ -62,7 +62,7 @@ DEEDS: Final = (
     Deed("sample_shift", "file", QT_TRANSLATE_NOOP("action", "Open the sample shift"), ("Ctrl+Shift+D",),
          QT_TRANSLATE_NOOP("action", "Open an invented night shift in a throw-away store."), needs_store=False),
     Deed("take_in", "file", QT_TRANSLATE_NOOP("action", "Take in a file..."), ("Ctrl+T",),
-         QT_TRANSLATE_NOOP("action", "Read a log file. You see what it holds before anything is recorded."),
+         QT_TRANSLATE_NOOP("action", "Read a log file, a table or results. You see first what it holds."),
          parted=True),
     Deed("taken", "file", QT_TRANSLATE_NOOP("action", "Files taken in..."), ("Ctrl+Alt+T",),
          QT_TRANSLATE_NOOP("action", "Which files were taken in and what each brought. One can be withdrawn whole.")),
@@ -224,6 +224,9 @@ DEEDS: Final = (
          QT_TRANSLATE_NOOP("action", "Keys, the log strip's words, and what the shapes mean."), needs_store=False),
     Deed("find_action", "help", QT_TRANSLATE_NOOP("action", "Find an action..."), ("Ctrl+K",),
          QT_TRANSLATE_NOOP("action", "Every action by name, with its keys."), needs_store=False),
+    Deed("report_problem", "help", QT_TRANSLATE_NOOP("action", "Report a problem..."), ("Ctrl+Shift+F1",),
+         QT_TRANSLATE_NOOP("action", "A report to read and save, with nothing of a patient in it."),
+         needs_store=False),
     Deed("about", "help", QT_TRANSLATE_NOOP("action", "About and cautions"), ("Shift+F1",),
          QT_TRANSLATE_NOOP("action", "What this tool is for, and what it is not."), needs_store=False),
 )

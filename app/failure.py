@@ -8,6 +8,7 @@ import traceback
 from dataclasses import dataclass
 from pathlib import Path
 
+from app.log_file import scrubbed_trace
 from core.record.message import Message, RecordError
 from storage.errors import StoreError
 
@@ -77,6 +78,6 @@ def failure_of(error: BaseException, subject: str = "", number: int = 0) -> Fail
     if isinstance(error, OSError) and error.errno in (errno.ENOSPC, errno.EDQUOT):
         return Failure(Message("file.disk_full", {"path": "", "detail": str(error)}), subject, number)
     trace = frames_of(error)
-    _log.error("unexpected error in %s\n%s", subject or "work", trace)
+    _log.error("unexpected error in %s\n%s", subject or "work", trace, extra={"places": scrubbed_trace(error)})
     detail = f"{type(error).__name__}: {error}".splitlines()[0][:200]
     return Failure(Message("error.unexpected", {"detail": detail}), subject, number, trace)

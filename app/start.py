@@ -56,10 +56,18 @@ def make_window() -> MainWindow:
         return MainWindow(preferences, path)
 
 
+def _start_log() -> None:
+    """The first screen comes before the log."""
+    from app.log_file import default_folder, start_log
+
+    start_log(default_folder())
+
+
 def run_window(store: Path | None = None, passphrase: str | None = None, by: str = "") -> int:
     """Open the window on a store, or on the first page; returns when it is closed."""
     window = make_window()
     window.show()
+    QTimer.singleShot(0, _start_log)
     if by:
         window.prefer(person=by)
     if store is not None and (store.exists() or passphrase is not None):
@@ -73,5 +81,6 @@ def run_demo() -> int:
     """Open the window on the sample shift in a throw-away store; returns when it is closed."""
     window = make_window()
     window.show()
+    QTimer.singleShot(0, _start_log)
     QTimer.singleShot(0, window.doers.file.do_sample_shift)
     return application().exec()

@@ -2,7 +2,12 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from app.deeds.doer import Doer
+
+if TYPE_CHECKING:
+    from app.problem_report import Open
 
 
 class HelpDeeds(Doer):
@@ -24,6 +29,28 @@ class HelpDeeds(Doer):
         finder.deleteLater()
         if chosen is not None:
             chosen.trigger()
+
+    def do_report_problem(self) -> None:
+        """A report to be read, then saved or copied."""
+        from app.dialogs.problem_report import ProblemReportDialog
+        from app.log_file import default_folder
+        from app.problem_report import report
+
+        window = self.window
+        size = (window.width(), window.height())
+        text = report(window.preferences, self._open_store(), default_folder(), size)
+        ProblemReportDialog(text, window.theme, window).open()
+
+    def _open_store(self) -> Open | None:
+        """What is told of the open store."""
+        from app.problem_report import Open
+
+        window = self.window
+        if window.model is None or window.feed is None or window.pages is None:
+            return None
+        session = window.model.session
+        return Open(len(window.feed.answers), session.head, session.read_only, session.is_demo, not session.is_live,
+                    window.pages.name, tuple(n.key for n in session.notices))  # fmt: skip
 
     def do_about(self) -> None:
         """What this is, and its cautions."""
