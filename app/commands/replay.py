@@ -3,15 +3,19 @@
 from __future__ import annotations
 
 import argparse
+import signal
 import sys
+import threading
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
 from pathlib import Path
+from types import FrameType
 from typing import TYPE_CHECKING
 
 from app.commands.context import Context
 from app.operations import replay as operations
-from app.operations.outcome import watched
+from app.operations.outcome import CancelledError, watched
 from app.replay_words import NamedPolicy, as_json, as_text
 
 if TYPE_CHECKING:
@@ -31,12 +35,12 @@ def run(context: Context, args: argparse.Namespace) -> int:
             tuple(p.text for p in policies), tuple(args.episodes or ()), args.start, args.end, args.at_once,
             args.processes,
         )  # fmt: skip
-        with watched(_progress()):
+        with _interruptible() as asked, watched(_progress(asked)):
             try:
                 answer = operations.run(store, context.by, context.now(), request).value
-            except KeyboardInterrupt:
+            except CancelledError:
                 print("\nluffmark: the replay was stopped.", file=sys.stderr)
-                raise
+                raise KeyboardInterrupt from None
     reader = context.reader()
     context.answer(as_text(answer, policies, reader), as_json(answer, policies, reader))
     return 0
@@ -57,14 +61,34 @@ def _named(context: Context, store: Store, path: Path | None) -> NamedPolicy:
     return NamedPolicy(path.name, text, read_policy(text))
 
 
-def _progress() -> Callable[[int, int], None]:
-    """One line on a terminal that writes over itself; silent elsewhere."""
-    if not sys.stderr.isatty():
-        return lambda _done, _total: None
-    started, shown = time.monotonic(), [-1]
+@contextmanager
+def _interruptible() -> Iterator[threading.Event]:
+    """Ctrl+C sets the event, so that the work ends where it looks at it and not in the middle of anything. A second
+    one ends it anywhere."""
+    asked = threading.Event()
+    if threading.current_thread() is not threading.main_thread():
+        yield asked
+        return
+
+    def interrupted(_number: int, _frame: FrameType | None) -> None:
+        asked.set()
+        signal.signal(signal.SIGINT, before)
+
+    before = signal.signal(signal.SIGINT, interrupted)
+    try:
+        yield asked
+    finally:
+        signal.signal(signal.SIGINT, before)
+
+
+def _progress(asked: threading.Event) -> Callable[[int, int], None]:
+    """One line on a terminal that writes over itself; silent elsewhere. Stops the work once that was asked for."""
+    started, shown, tells = time.monotonic(), [-1], sys.stderr.isatty()
 
     def step(done: int, total: int) -> None:
-        if done == shown[0] or time.monotonic() - started < 1:
+        if asked.is_set():
+            raise CancelledError
+        if not tells or done == shown[0] or time.monotonic() - started < 1:
             return
         shown[0] = done
         end = "\n" if done == total else ""
