@@ -28,6 +28,7 @@ class EpisodeFeed(QObject):
         super().__init__(parent)
         self._model, self._ward, self._gas_unit = model, ward, gas_unit
         self._kept: dict[str, PanelSet] = {}
+        self._sets: dict[str, PanelSet] = {}
         self._later: Mapping[str, tuple[Hindsight, ...]] = {}
         model.changed.connect(self._model_changed)
         ward.refreshed.connect(self._ward_refreshed)
@@ -49,9 +50,25 @@ class EpisodeFeed(QObject):
         indication = answer.figures.profile.get("indication") if answer is not None else None
         return family_of(str(indication) if indication else None)
 
+    def indication(self) -> str:
+        """The indication of the selected episode, or ""."""
+        answer = self._ward.answers.get(self._model.session.selection or "")
+        return str(answer.figures.profile.get("indication") or "") if answer is not None else ""
+
+    @property
+    def has_own(self) -> bool:
+        """Whether panels are kept for the selected episode's indication alone."""
+        return self.indication() in self._kept
+
+    @property
+    def sets(self) -> Mapping[str, PanelSet]:
+        """Sets of panels that were saved under a name."""
+        return self._sets
+
     def panels(self) -> PanelSet:
-        """The panels of the selected episode: the user's own, else the shipped ones."""
-        return self._kept.get(self.family()) or shipped(self.family(), shipped_titles())
+        """The panels of the selected episode: those kept for its indication, else for its kind, else shipped."""
+        kept = self._kept.get(self.indication()) or self._kept.get(self.family())
+        return kept or shipped(self.family(), shipped_titles())
 
     def show_selection(self) -> None:
         """Tell what the selected episode is now."""
@@ -82,13 +99,15 @@ class EpisodeFeed(QObject):
         self.show_selection()
 
     def _loaded(self, outcome: Outcome[Mapping[str, str]]) -> None:
-        self._kept = {}
+        self._kept, self._sets = {}, {}
         for name, text in outcome.value.items():
-            if name.startswith("panels."):
-                try:
-                    self._kept[name.removeprefix("panels.")] = from_json(text)
-                except RecordError:
-                    continue  # a kept set of a newer program: the shipped panels stand in, nothing is lost
+            room, _, key = name.partition(".")
+            if room not in ("panels", "panelset"):
+                continue
+            try:
+                (self._kept if room == "panels" else self._sets)[key] = from_json(text)
+            except RecordError:
+                continue  # a kept set of a newer program: the shipped panels stand in, nothing is lost
         self.show_selection()
 
 

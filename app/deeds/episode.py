@@ -39,17 +39,25 @@ class EpisodeDeeds(Doer):
 
         feed = self.window.episode_feed
         if feed is not None:
-            self._editor = PanelEditor(feed.panels(), feed.family(), self.window.theme, self.window)
+            self._editor = PanelEditor(
+                feed.panels(), feed.family(), self.window.theme, self.window,
+                sets=feed.sets, indication=feed.indication(), own=feed.has_own,
+            )  # fmt: skip
             self._editor.kept.connect(self.keep_panels)
+            self._editor.set_kept.connect(self.keep_set)
             self._editor.open()
 
     def keep_panels(self, panels: PanelSet | None) -> None:
         """Keep the user's panels; None goes back to the shipped ones."""
-        feed = self.window.episode_feed
-        if feed is not None:
-            text = None if panels is None else to_json(panels)
-            layout = panel_operations.Layout(f"panels.{feed.family()}", text)
-            self.model.ask(panel_operations.keep, layout, done=self._panels_kept)
+        self._keep(f"panels.{self._editor.sets.scope}", panels)
+
+    def keep_set(self, name: str, panels: PanelSet | None) -> None:
+        """Keep a set of panels under a name; None forgets it."""
+        self._keep(f"panelset.{name}", panels)
+
+    def _keep(self, name: str, panels: PanelSet | None) -> None:
+        layout = panel_operations.Layout(name, None if panels is None else to_json(panels))
+        self.model.ask(panel_operations.keep, layout, done=self._panels_kept)
 
     def _panels_kept(self, outcome: Outcome[panel_operations.Layout]) -> None:  # noqa: ARG002
         self.model.look_for_changes()

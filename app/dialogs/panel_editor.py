@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
 
 from PySide6.QtCore import Qt, Signal
@@ -22,6 +22,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.dialogs.panel_sets import PanelSets
 from app.episode_feed import shipped_titles
 from app.panels import PanelSet, drawable, from_toml, shipped, to_toml, unit_of
 from app.phrases import computed_name
@@ -33,12 +34,18 @@ _KEY = Qt.ItemDataRole.UserRole
 
 
 class PanelEditor(QDialog):
-    """`kept(PanelSet)` when the person keeps them, `kept(None)` for the shipped ones."""
+    """`kept(PanelSet)` when the person keeps them, `kept(None)` for the shipped ones; `sets.scope` says for whom.
+    `set_kept(name, PanelSet)` when a set was saved under a name, or with None when it was forgotten."""
 
     kept = Signal(object)
+    set_kept = Signal(str, object)
 
-    def __init__(self, panels: PanelSet, family: str, theme: Theme, parent: QWidget | None = None) -> None:
+    def __init__(
+        self, panels: PanelSet, family: str, theme: Theme, parent: QWidget | None = None, *,
+        sets: Mapping[str, PanelSet] | None = None, indication: str = "", own: bool = False,
+    ) -> None:  # fmt: skip
         super().__init__(parent)
+        self.sets = PanelSets(sets or {}, family, indication, own, theme)
         self.panels, self._family, self._theme = panels, family, theme
         self._history: list[PanelSet] = []
         self._filling = False
@@ -55,7 +62,7 @@ class PanelEditor(QDialog):
         self._lay_out()
         self._connect()
         self._show(panels.panels[0].key)
-        self.resize(theme.px(860), theme.px(600))
+        self.resize(theme.px(860), theme.px(660))
 
     def _lay_out(self) -> None:
         px = self._theme.px
@@ -70,6 +77,7 @@ class PanelEditor(QDialog):
         upper.addLayout(self._fields(), 3)
         column = QVBoxLayout(self)
         column.setContentsMargins(px(16), px(16), px(16), px(16))
+        column.addWidget(self.sets)
         column.addLayout(upper, 1)
         column.addWidget(self.wrong)
         column.addLayout(self._foot())
@@ -136,6 +144,9 @@ class PanelEditor(QDialog):
         self.height_slider.sliderReleased.connect(self._edited)
         self.bands.clicked.connect(self._edited)
         self.channels.itemChanged.connect(self._channel_ticked)
+        self.sets.chosen.connect(self.take_set)
+        self.sets.saved.connect(self.save_set)
+        self.sets.forgotten.connect(self._set_forgotten)
 
     # the panel in hand
 
@@ -262,8 +273,20 @@ class PanelEditor(QDialog):
         self._become(shipped, self._family, shipped_titles())
         self._reset = True
 
+    def take_set(self, panels: PanelSet) -> None:
+        """Put a named set in place of the panels; undo goes back."""
+        self._become(lambda: panels)
+
+    def save_set(self, name: str) -> None:
+        """Keep the panels as a set under a name."""
+        self.sets.saved_as(name, self.panels)
+        self.set_kept.emit(name, self.panels)
+
+    def _set_forgotten(self, name: str) -> None:
+        self.set_kept.emit(name, None)
+
     def keep(self) -> None:
-        """Keep the panels for every episode of this kind."""
+        """Keep the panels for those they are kept for."""
         self.kept.emit(None if self._reset else self.panels)
         self.accept()
 

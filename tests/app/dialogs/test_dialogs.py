@@ -219,6 +219,67 @@ def test_a_third_unit_is_refused_and_undo_goes_back(qtbot, window):
     editor.reject()
 
 
+def open_panels(window, key="bed-7"):
+    window.open_episode(key)
+    window.actions_by_key["panels"].trigger()
+    return dialog_of(window, PanelEditor)
+
+
+def test_panels_kept_for_one_indication_leave_the_others_alone(qtbot, window):
+    editor = open_panels(window)
+    assert [editor.sets.kept_for.itemData(n) for n in range(2)] == ["usual", "copd"]
+    editor.name.setText("Gas of COPD")
+    editor.name.editingFinished.emit()
+    editor.sets.kept_for.setCurrentIndex(1)
+    editor.keep()
+    until(qtbot, lambda: window.episode_feed.panels().panels[0].title == "Gas of COPD")
+    window.strip.focus()
+    qtbot.keyClicks(window.strip.line, "indication neuromuscular")
+    settled(qtbot, window)
+    qtbot.keyClick(window.strip.line, Qt.Key.Key_Return)
+    until(qtbot, lambda: window.episode_feed.indication() == "neuromuscular")
+    assert window.episode_feed.panels().panels[0].title == "Blood gas"
+
+
+def test_a_set_is_saved_by_name_taken_undone_and_forgotten(qtbot, window):
+    editor = open_panels(window)
+    shipped_panels = editor.panels
+    editor.duplicate()
+    editor.save_set("Night round")
+    four = editor.panels
+    editor.reject()
+    settled(qtbot, window)
+    until(qtbot, lambda: "Night round" in window.episode_feed.sets)
+    again = open_panels(window, "bed-3")  # a set serves every episode
+    again.sets.named.setCurrentIndex(again.sets.named.findData("Night round"))
+    again.sets.named.activated.emit(1)
+    assert again.panels == four
+    again.undo()
+    assert again.panels == shipped_panels
+    again.sets.named.setCurrentIndex(1)
+    again.sets.named.activated.emit(1)
+    again.sets.forget.click()
+    until(qtbot, lambda: not window.episode_feed.sets)
+    again.reject()
+
+
+def test_height_axis_bands_and_order_are_changed_and_drawn(qtbot, window):
+    editor = open_panels(window)
+    editor.low.setText("7.0")
+    editor.high.setText("7.6")
+    editor.high.editingFinished.emit()
+    editor.bands.click()
+    editor.height_slider.setValue(20)
+    editor.height_slider.sliderReleased.emit()
+    editor.down()
+    editor.keep()
+    until(qtbot, lambda: window.episode_feed.panels().panels[1].key == "gas")
+    panel = window.episode_feed.panels().panels[1]
+    assert (panel.low, panel.high, panel.bands, panel.height) == (7.0, 7.6, False, 2.0)
+    until(qtbot, lambda: window.pages.episode.stack.spec.panels[1].scales[0].low == 7.0)
+    assert window.pages.episode.stack.spec.panels[1].scales[0].high == 7.6
+
+
 # lists, tables, person
 
 
