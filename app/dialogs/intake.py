@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from itertools import islice
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QElapsedTimer, QTimer
+from PySide6.QtCore import QElapsedTimer
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QCheckBox,
@@ -20,6 +21,8 @@ from PySide6.QtWidgets import (
 
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
+from app.formats import inert
+from app.intake_window.new_rows import new_rows
 from app.intake_window.patient_rows import PatientRows
 from app.operations import intake as intake_operations
 from app.operations.intake import ReadRequest, TakeRequest
@@ -58,16 +61,24 @@ class IntakeDialog(AskingDialog):
         self.bar.setTextVisible(False)
         self.bar.setAccessibleName(self.tr("Progress"))
         self.table = QTableWidget(0, 4)
-        self.table.setAccessibleName(self.tr("Rows refused and rows in doubt"))
+        self.table.setAccessibleName(self.tr("Rows refused, in doubt, left aside, and what will be recorded"))
         self.table.setHorizontalHeaderLabels(
-            [self.tr("Line"), self.tr("What"), self.tr("Value"), self.tr("Why, and what is accepted")]
+            [
+                self.tr("Line"),
+                self.tr("What"),
+                self.tr("Value"),
+                self.tr("Why and what is accepted; whose and when"),
+            ]
         )
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setWordWrap(True)
         self.table.verticalHeader().hide()
         for column in range(3):
-            self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
+            self.table.horizontalHeader().setSectionResizeMode(
+                column, QHeaderView.ResizeMode.ResizeToContents
+            )
         self.table.horizontalHeader().setSectionResizeMode(3, QHeaderView.ResizeMode.Stretch)
+        self.table.horizontalHeader().sectionResized.connect(self._fit_rows)
         self.leave_out = QCheckBox(self.tr("Leave the refused rows out; this is recorded"))
         self.leave_out.hide()
         self.leave_out.toggled.connect(self._allow)
@@ -83,7 +94,7 @@ class IntakeDialog(AskingDialog):
         self.body.addWidget(self.patients)
         self.body.addWidget(self.leave_out)
         self.table.hide()
-        self.resize(theme.px(820), theme.px(520))
+        self.resize(theme.px(900), theme.px(560))
         self.go.setEnabled(False)
         self.summary.setText(self.tr("Reading {name}. Nothing is recorded yet.").format(name=path.name))
         self.bar.setRange(0, 0)
@@ -97,7 +108,9 @@ class IntakeDialog(AskingDialog):
         self.bar.setRange(0, 0)
         self.left.clear()
         self._clock.start()
-        self._number = self._model.ask(intake_operations.read, self._request, done=self._read, failed=self._failed)
+        self._number = self._model.ask(
+            intake_operations.read, self._request, done=self._read, failed=self._failed
+        )
 
     def _patient_said(self, identifier: str, episode: str) -> None:
         """A person says whose an identifier is: the file is read again with it."""
@@ -185,15 +198,31 @@ class IntakeDialog(AskingDialog):
         found: list[tuple[Refusal | Doubt, str]] = [(r, self.tr("refused")) for r in intake.refusals]
         found += [(d, self.tr("in doubt")) for d in intake.doubts]
         found += [(r, self.tr("left aside")) for r in intake.aside]
-        self.table.setVisible(bool(found))
-        self.table.setRowCount(min(len(found), MOST_ROWS))
-        for n, (row, word) in enumerate(found[:MOST_ROWS]):
-            what = f"{word}, {row.column}" if row.column else word
-            for column, text in enumerate(
-                (str(row.line or ""), what, row.value[:MOST_LETTERS], sentence(row.message, self._reader))
-            ):
-                self.table.setItem(n, column, QTableWidgetItem(text))
-        QTimer.singleShot(0, self.table.resizeRowsToContents)  # once the last column has its width
+        rows = [self._found_row(row, word) for row, word in found[:MOST_ROWS]]
+        new = {
+            "new": self.tr("new"),
+            "corrects": self.tr("corrects"),
+            "withdraws": self.tr("withdraws"),
+            "samples": self.tr("samples"),
+        }
+        rows += islice(new_rows(intake, self._reader, new), MOST_ROWS - len(rows))
+        self.table.setVisible(bool(rows))
+        self.table.setRowCount(len(rows))
+        for n, texts in enumerate(rows):
+            for column, text in enumerate(texts):
+                item = QTableWidgetItem(text[:MOST_LETTERS] if column == 2 else text)
+                item.setToolTip(inert(text))
+                self.table.setItem(n, column, item)
+        self.table.resizeRowsToContents()
+
+    def _fit_rows(self, column: int, *_: int) -> None:
+        """Sentences wrap: rows follow the width that the last column gets."""
+        if column == self.table.columnCount() - 1:
+            self.table.resizeRowsToContents()
+
+    def _found_row(self, row: Refusal | Doubt, word: str) -> tuple[str, str, str, str]:
+        what = f"{word}, {row.column}" if row.column else word
+        return str(row.line or ""), what, row.value, sentence(row.message, self._reader)
 
     def _allow(self) -> None:
         intake = self.intake

@@ -167,3 +167,18 @@ def test_a_patient_of_a_result_file_is_confirmed_once(qtbot, window, tmp_path):
     until(qtbot, lambda: later.intake is not None)
     assert later.go.isEnabled()
     later.reject()
+
+
+def test_what_will_be_recorded_is_listed_before_it_is(qtbot, window, tmp_path):
+    path = tmp_path / "results.hl7"
+    path.write_text(message(gas(), at="202603280425+0000", sent="202603280430+0000"))
+    dialog = window.doers.file.take_in(path)
+    until(qtbot, lambda: dialog.intake is not None)
+    dialog.patients.boxes["WARD-7|0042"].setCurrentText("bed-7")
+    first = dialog.intake
+    dialog.patients.buttons["WARD-7|0042"].click()
+    until(qtbot, lambda: dialog.intake is not first)
+    rows = [[dialog.table.item(r, c).text() for c in range(1, 4)] for r in range(dialog.table.rowCount())]
+    assert ["new, PaCO2", "8.1 kPa", "bed-7, 28-Mar-2026 04:25"] in rows
+    assert ["new, pH", "7.31", "bed-7, 28-Mar-2026 04:25"] in rows
+    dialog.reject()

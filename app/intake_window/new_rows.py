@@ -1,0 +1,49 @@
+"""What a file would record, row by row in words: entries by their time, samples by their span."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+from app import formats
+from app.words import Reader
+from core.record.channels import CHANNELS
+from core.record.entries import Action, NewEntry
+
+if TYPE_CHECKING:
+    from storage.intake.findings import Intake
+
+Row = tuple[str, str, str, str]
+
+
+def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[Row]:
+    """Rows of (line, what, value, where and when). `words` name what is done: new, corrects, withdraws, samples."""
+    told = replace(reader, near=None)  # a file is of any day
+    for draft in intake.entries:
+        e = draft.entry
+        what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(
+            e.action, words["new"]
+        )
+        yield "", f"{what}, {_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
+    spans: dict[tuple[str, str], tuple[int, int, int]] = {}
+    for c in intake.chunks:
+        key, block = (c.episode, c.channel), c.block
+        first, last, count = spans.get(key, (block.t0, block.t1, 0))
+        spans[key] = (min(first, block.t0), max(last, block.t1), count + block.n)
+    for (episode, channel), (first, last, count) in spans.items():
+        when = f"{told.time(first)} - {told.time(last)}"
+        yield "", f"{words['new']}, {_name(channel)}", f"{count:,} {words['samples']}", f"{episode}, {when}"
+
+
+def _name(channel: str) -> str:
+    return CHANNELS[channel].name if channel in CHANNELS else channel
+
+
+def _value(e: NewEntry) -> str:
+    if e.words is not None:
+        return e.words
+    if e.number is not None and not e.raw:
+        return formats.trimmed(e.number)
+    unit = "" if e.raw_unit in ("pH", "points", "fraction") else e.raw_unit
+    return formats.with_unit(e.raw, unit)
