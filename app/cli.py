@@ -177,11 +177,19 @@ def _printing(command: Command) -> None:
 
 
 def _keeping(command: Command) -> None:
-    command("verify", "check the store: file, chain, safeguards, rules")
+    verify = command("verify", "check the store: file, chain, safeguards, rules")
+    verify.add_argument("--witness", type=Path, metavar="FILE",
+                        help="check that every head this file was given is still there")  # fmt: skip
+    verify.add_argument("--add-witness", type=Path, metavar="FILE",
+                        help="if the store is sound, add its head to this file")  # fmt: skip
     backup = command("backup", "write a backup while others go on working", "backup")
     backup.add_argument("file", type=Path)
     restore = command("restore", "make a new store of a backup; nothing is overwritten", "restore")
     restore.add_argument("file", type=Path, help="the backup")
+    restore.add_argument("--against", type=Path, metavar="OLD", help="say what this old store holds beyond it")
+    salvage = command("salvage", "save what can be read of a damaged store into a new one")
+    salvage.add_argument("old", type=Path, help="the damaged store; it is not changed")
+    salvage.add_argument("new", type=Path, help="the store to make")
     export = command("export", "write entries and device samples as a log file (CSV) that intake takes")
     export.add_argument("--out", type=Path, required=True, metavar="FILE")
     export.add_argument("--format", choices=("csv", "fhir"), default="", help="log CSV, or FHIR R4 (for .json)")
@@ -205,7 +213,7 @@ def _keeping(command: Command) -> None:
     people.add_argument("--lead", action="store_true", help="add as ward lead: policy, people, restore, removal")
     people.add_argument("--new-pin-fd", type=int, metavar="N", help="read the new PIN from this descriptor")
     people.add_argument("--recovery-fd", type=int, metavar="N",
-                        help="pin: the store's recovery code, where every ward lead has forgotten theirs")  # fmt: skip
+                        help="pin: the store's recovery code, where every ward lead forgot theirs")  # fmt: skip
     policy = command("policy", "show the policy in force, or check or put in force a policy file")
     policy.add_argument("what", choices=("show", "check", "put", "history"))
     policy.add_argument("file", nargs="?", type=Path)

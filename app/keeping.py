@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, QTimer
 
+from app.backups import BackupKeeper
 from app.draft_keeper import DraftKeeper
 from app.failure import Failure
 from app.lock import IdleWatch, Lock
@@ -21,6 +22,7 @@ from core.record.message import Message
 
 if TYPE_CHECKING:
     from app.opened import Opened
+    from app.operations.backup import Rotated
     from app.window import MainWindow
 
 BUSY = "store.busy_for_now"
@@ -36,6 +38,7 @@ class Keeping(QObject):
         self._window = window
         self._model: SessionModel | None = None
         self._drafts: DraftKeeper | None = None
+        self.backups: BackupKeeper | None = None
         self._busy, self._proven = False, ""
         self._told: tuple[str, ...] = ()
         self.notices = NoticeStrip(window.theme)
@@ -63,6 +66,10 @@ class Keeping(QObject):
         self.notices.forget()
         self._drafts = DraftKeeper(opened, self)
         self._drafts.recovered.connect(self._recovered)
+        kept = self._window.preferences
+        self.backups = BackupKeeper(opened.model, kept.backup_folder, kept.witness_file, self)
+        self.backups.stands.connect(self._backups_stand)
+        self.backups.failed.connect(self._backup_failed)
         opened.model.changed.connect(self._changed)
         self.surroundings.start(opened.model.session.store_path)
 
@@ -74,6 +81,10 @@ class Keeping(QObject):
         if self._drafts is not None:
             self._drafts.close()
             self._drafts.deleteLater()
+        if self.backups is not None:
+            self.backups.stop()
+            self.backups.deleteLater()
+            self.backups = None
         self._model, self._drafts, self._busy, self._told, self._proven = None, None, False, (), ""
         self.lock.unlock()
         self.notices.forget()
@@ -197,6 +208,8 @@ class Keeping(QObject):
         self.set_lock_minutes(self._window.preferences.lock_minutes)
         if not session.read_only:
             self._drafts.look_for_lost()
+        if self.backups is not None:
+            self.backups.start()
 
     def _tell_notices(self) -> None:
         if self._model is None:
@@ -210,6 +223,16 @@ class Keeping(QObject):
 
     def _surroundings_told(self, key: str, happened: Message | None) -> None:
         self.notices.tell(key, sentence(happened, self._window.plain_reader) if happened is not None else "")
+
+    def _backups_stand(self, found: Rotated) -> None:
+        self.notices.tell("backup", "")
+        told = " ".join(sentence(m, self._window.reader) for m in found.notices)
+        self.notices.tell("disk", told, lasting=True)
+
+    def _backup_failed(self, failure: Failure) -> None:
+        """Silence would be taken for a backup."""
+        told = self.tr("No backup was taken.") + " " + sentence(failure.message, self._window.reader)
+        self.notices.tell("backup", told)
 
     def _recovered(self, label: str) -> None:
         told = self.tr(

@@ -32,6 +32,8 @@ class Preferences:
     window: tuple[int, ...] = ()
     person: str = ""
     lock_minutes: int = 10
+    backup_folder: str = ""
+    witness_file: str = ""
 
     def with_store(self, path: str) -> Preferences:
         """With a store as the most recent one."""

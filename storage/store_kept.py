@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from core.record.instant import Instant
-from storage import documents, opening, settings_kept
+from storage import documents, opening, restore_report, settings_kept
 from storage.draft_batch import DraftBatch, DraftDocument, DraftPolicy, Receipt
 
 _ALL = 2**62
@@ -23,6 +23,11 @@ class StoreKept:
     def append_drafts(self, drafts: Sequence[DraftBatch], times: Sequence[Instant]) -> list[Receipt]:
         """Add batches to the ledger."""
         raise NotImplementedError
+
+    def newer_than(self, head: int) -> restore_report.Newer:
+        """What was recorded after a sequence, by episode: what a backup of that sequence lacks."""
+        with self._opened.database.read() as connection:
+            return restore_report.newer(connection, head)
 
     def layout(self, name: str) -> str | None:
         """A layout's text, or None."""

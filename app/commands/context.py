@@ -91,14 +91,18 @@ class Context:
             remark(sentence(notice, self.reader()))
         if not (read_only or proven):
             try:
-                self._prove(store)
+                self.prove(store)
             except BaseException:
                 store.close()
                 raise
         return store
 
-    def _prove(self, store: Store) -> None:
-        """Nobody writes as somebody else where people have PINs."""
+    def prove(self, store: Store) -> None:
+        """Nobody acts as somebody else where people have PINs.
+
+        Raises:
+            RecordError: `people.*`.
+        """
         from core.record.message import refuse
         from storage import people
 

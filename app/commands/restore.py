@@ -3,15 +3,60 @@
 from __future__ import annotations
 
 import argparse
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
 from app.operations import backup as operations
+from app.words import sentence
+from core.record.instant import iso
+
+if TYPE_CHECKING:
+    from storage.restore_report import Newer
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Make the store named by --store (or the default one) of a backup; it must not exist yet."""
+    passphrase = context.passphrase()
+    _prove(context, args.file, passphrase)
     context.store_path.parent.mkdir(parents=True, exist_ok=True)
-    operations.restore(args.file, context.store_path)
-    value = {"store": str(context.store_path), "backup": str(args.file)}
-    context.answer(f"Store {context.store_path} made from {args.file}. Check it: luffmark verify", value)
+    request = operations.RestoreRequest(args.file, context.store_path, passphrase, args.against)
+    made = operations.restore(None, context.by, context.now(), request).value
+    lines = [f"Store {context.store_path} made from {args.file}. Check it: luffmark verify", *newer_lines(made)]
+    value = {"store": str(context.store_path), "backup": str(args.file), "head": made.printed_head,
+             "newer_in_old": None if made.newer is None else newer_json(made.newer)}  # fmt: skip
+    context.answer("\n".join(lines), value)
     return 0
+
+
+def _prove(context: Context, backup: Path, passphrase: str | None) -> None:
+    """Where people sign in, who restores gives a PIN. A backup that stays closed cannot say who its people are."""
+    from storage.store import Store
+
+    if not operations.is_encrypted_and_closed(backup, passphrase):
+        with Store.open(backup, passphrase=passphrase, read_only=True) as source:
+            context.prove(source)
+
+
+def newer_lines(made: operations.Restored) -> list[str]:
+    """What the old store holds beyond the backup, in words."""
+    if made.not_compared is not None:
+        return [f"It could not be compared with the old store: {sentence(made.not_compared)}"]
+    if made.newer is None:
+        return []
+    lines = [] if made.same else ["The old store does not continue this backup: their chains differ."]
+    if not made.newer.batches:
+        return [*lines, "The old store holds nothing beyond this backup."]
+    lines.append(f"The old store holds {made.newer.batches} later recording(s), which the new one lacks:")
+    lines += [f"  {e.episode}: {e.entries} entries, {e.samples} device samples, last recorded {iso(e.last_recorded)}"
+              for e in made.newer.episodes]  # fmt: skip
+    if made.newer.others:
+        lines.append(f"  and {made.newer.others} documents, policies or sign-ins")
+    return lines
+
+
+def newer_json(newer: Newer) -> dict[str, Any]:
+    """The same, stable for programs."""
+    return {"batches": newer.batches, "others": newer.others, "head": newer.head,
+            "episodes": [{"episode": e.episode, "entries": e.entries, "samples": e.samples,
+                          "last_recorded_at": iso(e.last_recorded)} for e in newer.episodes]}  # fmt: skip

@@ -8,12 +8,17 @@ import sys
 from app.commands.context import Context
 from app.operations import store as operations
 from app.words import sentence
+from storage import witness
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Check the store. Exit 1 with every finding on stderr where something is wrong."""
     with context.open(read_only=True) as store:
         findings = operations.verify(store, context.by, context.now(), None).value
+        if args.witness is not None:
+            findings = (*findings, *witness.findings(args.witness, store))
+        if args.add_witness is not None and not findings:
+            witness.add(args.add_witness, store, context.now())
         head = store.printed_head()
         path = str(store.path)
     texts = [sentence(f) for f in findings]

@@ -95,6 +95,11 @@ class FileDeeds(Doer):
         if chosen:
             self.open_path(Path(chosen))
 
+    @property
+    def last_path(self) -> Path | None:
+        """The store that was tried last."""
+        return self._last.path if self._last is not None else None
+
     def open_recent(self, path: str) -> None:
         """Open a store of the list of recent ones."""
         self.open_path(Path(path))

@@ -2,18 +2,25 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from pathlib import Path
+from typing import TYPE_CHECKING, TypeVar
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QInputDialog
 
+from app.clock import REAL, Clock
 from app.deeds.doer import Doer
 from app.failure import Failure
 from app.operations.outcome import Outcome
 from app.preferences import MOST_LOCK_MINUTES
+from app.words import sentence
+from core.record.message import Message
 
 if TYPE_CHECKING:
     from app.dialogs.passphrase import ChangePassphraseDialog, RecoveryCodeDialog
+    from app.dialogs.store_care import FileWork, RestoreDialog, SalvageDialog
+
+T = TypeVar("T", bound="FileWork")
 
 
 class StoreDeeds(Doer):
@@ -41,6 +48,98 @@ class StoreDeeds(Doer):
         """Lock after so many minutes from now on."""
         self.window.prefer(lock_minutes=minutes)
         self.window.keeping.set_lock_minutes(minutes)
+
+    # backups and damage
+
+    def do_backups(self) -> None:
+        """List the backups; take one, restore one, choose the folder."""
+        from app.dialogs.store_care import BackupsDialog
+
+        keeper = self.window.keeping.backups
+        if keeper is None:
+            return
+        path = self.model.session.store_path
+        dialog = BackupsDialog(keeper, path, self.window.reader, self.window.theme, self.window)
+        dialog.restore_wanted.connect(self.restore)
+        dialog.folder_wanted.connect(self.set_backup_folder)
+        dialog.witness_wanted.connect(self.set_witness)
+        dialog.open()
+
+    def set_backup_folder(self, folder: Path) -> None:
+        """Keep backups there from now on."""
+        self.window.prefer(backup_folder=str(folder))
+        if self.window.keeping.backups is not None:
+            self.window.keeping.backups.folder = folder
+
+    def set_witness(self, path: Path) -> None:
+        """Add the printed head to this file after each backup."""
+        self.window.prefer(witness_file=str(path))
+        if self.window.keeping.backups is not None:
+            self.window.keeping.backups.witness = str(path)
+
+    def do_restore(self) -> None:
+        """Ask for a backup, restore it."""
+        self.restore(None)
+
+    def restore(self, backup: Path | None) -> RestoreDialog:
+        """Restore a backup into a new store."""
+        from app.dialogs.store_care import RestoreDialog
+
+        dialog = RestoreDialog(backup, self._store_path(), self._who(), self._clock(), self.window.reader,
+                               self.window.theme, self.window)  # fmt: skip
+        return self._work_on_files(dialog)
+
+    def do_salvage(self) -> None:
+        """Ask for a damaged store, save what can be read."""
+        self.salvage(self._store_path())
+
+    def salvage(self, old: Path | None) -> SalvageDialog:
+        """Save what can be read of a damaged store."""
+        from app.dialogs.store_care import SalvageDialog
+
+        dialog = SalvageDialog(old, self._who(), self._clock(), self.window.reader, self.window.theme, self.window)
+        return self._work_on_files(dialog)
+
+    def _work_on_files(self, dialog: T) -> T:
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        dialog.made.connect(self._open_made)
+        dialog.open()
+        return dialog
+
+    def _open_made(self, path: Path) -> None:
+        self.window.doers.file.open_path(path)
+
+    def _store_path(self) -> Path | None:
+        """The store that is open, else the one that was tried last."""
+        if self.window.model is not None:
+            return self.window.model.session.store_path
+        return self.window.doers.file.last_path
+
+    def _who(self) -> str:
+        return self.window.model.session.person if self.window.model else self.window.preferences.person
+
+    def _clock(self) -> Clock:
+        return self.window.model.session.clock if self.window.model is not None else REAL
+
+    def do_check_store(self) -> None:
+        """Check the store whole."""
+        from app.operations import store
+
+        self.window.say(self.tr("Checking the store..."))
+        self.model.ask(store.verify, None, done=self._checked, subject="check store")
+
+    def _checked(self, outcome: Outcome[tuple[Message, ...]]) -> None:
+        if not outcome.value:
+            self.window.say(self.tr("The store is sound: pages, chain, safeguards and rules."))
+            return
+        from app.dialogs.table import TableDialog
+        from app.tables import Table
+
+        texts = [sentence(m, self.window.reader) for m in outcome.value]
+        heads = (self.tr("No."), self.tr("Finding"))
+        rows = tuple((str(n), text) for n, text in enumerate(texts, start=1))
+        told = self.tr("The store is not sound. Restore the newest backup, or save what can be read.")
+        TableDialog(Table(self.tr("Findings"), heads, rows, told), self.window.theme, self.window).open()
 
     # people
 

@@ -93,7 +93,7 @@ class PeopleDialog(AskingDialog):
         self.people = outcome.value
         some = self.tr("Initials and PIN are asked for when the store opens and after a lock, not for each entry.")
         none = self.tr(
-            "Nobody signs in with a PIN yet: initials alone are asked for. The first person added is a ward lead, and "
+            "Nobody signs in with a PIN yet: initials alone are asked for. The first person is a ward lead, and "
             "from then on everybody signs in."
         )
         self.told.setText(some if self.people else none)

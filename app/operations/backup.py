@@ -1,16 +1,25 @@
-"""Operations that keep a store safe: a backup while others work, and a new store of a backup."""
+"""Operations that keep a store safe: backups by hand and by the clock, and a new store of a backup."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import shutil
+from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
+from app.operations.people import require_lead
 from core.record.instant import Instant
+from core.record.message import Message, Value
+from storage.errors import StoreError
 
 if TYPE_CHECKING:
+    from storage.restore_report import Newer
     from storage.store import Store
+
+RESTORED = "restored from a backup"
+LEAST_FREE, TIMES_STORE = 500_000_000, 4
+"""Below the greater of so many bytes and so many times the store's size, the disk counts as nearly full."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,6 +29,50 @@ class BackupFacts:
     path: Path
     size: int
     printed_head: str
+
+
+@dataclass(frozen=True, slots=True)
+class Rotation:
+    """Where rotating backups lie. `now`: take one whether or not the last is an hour old. `witness`: a file that the
+    printed head is added to after each, "" for none."""
+
+    folder: Path
+    now: bool = False
+    witness: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Rotated:
+    """How the rotating backups stand: the newest one, whether it was taken just now, and what is to be told."""
+
+    newest: Path | None
+    at: Instant | None
+    taken: bool
+    notices: tuple[Message, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class RestoreRequest:
+    """A backup, the store to be made of it, the passphrase where it is encrypted, and the old store if it opens."""
+
+    backup: Path
+    new: Path
+    passphrase: str | None = field(default=None, repr=False)
+    against: Path | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Restored:
+    """A store made of a backup. `newer`: what the old store holds beyond it; None where there was none to compare.
+
+    `same`: whether the old store still holds the backup's head, so that the one continues the other.
+    """
+
+    new: Path
+    printed_head: str
+    newer: Newer | None = None
+    same: bool = True
+    not_compared: Message | None = None
 
 
 def write(store: Store, who: str, now: Instant, request: Path) -> Outcome[BackupFacts]:
@@ -33,12 +86,79 @@ def write(store: Store, who: str, now: Instant, request: Path) -> Outcome[Backup
     return Outcome(BackupFacts(request, request.stat().st_size, head), store.head())
 
 
-def restore(backup: Path, new: Path) -> None:
-    """Make a new store of a backup. Works on files alone: no store is open yet.
+def rotate(store: Store, who: str, now: Instant, request: Rotation) -> Outcome[Rotated]:
+    """Take a rotating backup where one is due; those whose time is over go once the new one has been opened.
 
     Raises:
-        StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`.
+        StoreError: `store.backup_failed`, `store.disk_full`, `store.no_folder`.
     """
+    from storage import backup_rotation, witness
+
+    taken = request.now or backup_rotation.is_due(request.folder, store.path, now)
+    if taken:
+        request.folder.mkdir(parents=True, exist_ok=True)
+        backup_rotation.rotate(store, request.folder, now)
+        if request.witness:
+            witness.add(Path(request.witness), store, now)
+    found = backup_rotation.backups_in(request.folder, store.path)
+    newest = max(found, default=None)
+    notices = low_disk(store.path, request.folder)
+    return Outcome(Rotated(found[newest] if newest is not None else None, newest, taken, notices), store.head())
+
+
+def low_disk(store: Path, *folders: Path) -> tuple[Message, ...]:
+    """What to say of disks that are nearly full: the store's own and those of other folders."""
+    needed = max(LEAST_FREE, TIMES_STORE * store.stat().st_size)
+    told: dict[int, Message] = {}
+    for place in (store.parent, *folders):
+        if place.is_dir():
+            free = shutil.disk_usage(place).free
+            if free < needed:
+                values: dict[str, Value] = {"path": str(place), "free_mb": free // 1_000_000,
+                                        "needed_mb": needed // 1_000_000}  # fmt: skip
+                told.setdefault(place.stat().st_dev, Message("store.low_disk", values))
+    return tuple(told.values())
+
+
+def restore(store: object, who: str, now: Instant, request: RestoreRequest) -> Outcome[Restored]:
+    """Make a new store of a backup and say what the old one holds beyond it. Needs no open store.
+
+    Where people sign in, a ward lead restores; the new store keeps that it was done, where it can be opened.
+
+    Raises:
+        StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`, `key.*`.
+        RecordError: `people.lead_needed`.
+    """
+    from storage.opening import is_encrypted
     from storage.store import Store
 
-    Store.restore(backup, new)
+    if not is_encrypted_and_closed(request.backup, request.passphrase):
+        with Store.open(request.backup, passphrase=request.passphrase, read_only=True) as source:
+            require_lead(source, who)
+    Store.restore(request.backup, request.new, passphrase=request.passphrase)
+    if is_encrypted(request.new) and request.passphrase is None:
+        return Outcome(Restored(request.new, ""), 0)
+    with Store.open(request.new, passphrase=request.passphrase) as made:
+        head, printed = made.head(), made.printed_head()
+        found = _compared(request, head, printed)
+        receipt = made.record_event(RESTORED, person=who, now=now, detail=f"{request.backup.name}, head {printed}")
+    return Outcome(found, receipt.last_seq)
+
+
+def is_encrypted_and_closed(path: Path, passphrase: str | None) -> bool:
+    """Whether a backup is there and cannot be looked into for want of its passphrase."""
+    from storage.opening import is_encrypted
+
+    return not path.is_file() or (is_encrypted(path) and passphrase is None)
+
+
+def _compared(request: RestoreRequest, head: int, printed: str) -> Restored:
+    from storage.store import Store
+
+    if request.against is None:
+        return Restored(request.new, printed)
+    try:
+        with Store.open(request.against, passphrase=request.passphrase, read_only=True) as old:
+            return Restored(request.new, printed, old.newer_than(head), head == 0 or old.proves(printed))
+    except StoreError as error:
+        return Restored(request.new, printed, not_compared=error.message)

@@ -12,6 +12,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "correction.unknown_entry": "Entry {entry} is not one that can be corrected here. Name {accepted}.",
     "document.damaged": "Document {value} is not what was kept: its digest does not fit.",
     "document.unknown": "There is no document {value} in the store.",
+    "doubt.salvaged": "It was saved from a damaged file, where nothing proves that it was not changed.",
     "doubt.unusual":
         "{channel:name} {value:of} is outside the usual {low:of} to {high:of}.",
     "entry.id_too_long": "The id '{value}' is too long: at most {accepted} characters are accepted.",

@@ -43,6 +43,16 @@ TEMPLATES: Final[dict[str, str]] = {
     "replay.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
         "Replay fewer episodes, or a shorter span.",
+    "salvage.batches_lost": "{count:0} recording(s) lost their time and author; their values took those of the one before.",
+    "salvage.doubtful": "{count:0} entries are kept and marked doubtful: nothing proves that they were not changed.",
+    "salvage.kept_lost": "{count:0} layouts or drafts were damaged and left out.",
+    "salvage.lost_between": "What was lost had been recorded between {first:time} and {last:time}.",
+    "salvage.rows_lost": "{count:0} row(s) were lost: they cannot be read, or make no sense.",
+    "salvage.saved": "Saved: {entries:0} entries of {episodes:0} episode(s), {samples:0} device samples, {others:0} "
+        "documents, policies and events.",
+    "salvage.tail_unknown": "The last page cannot be read: more may have been recorded after what was saved.",
+    "salvage.unlinked": "{count:0} correction(s) or move(s) lost what they replaced and stand on their own.",
+    "salvage.withdrawals_lost": "{count:0} withdrawal(s) were left out: what they took back is lost too.",
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "store.archive": "{path} is an archive of closed episodes: it is open for reading only.",
     "store.backup_failed": "The backup {path} could not be written: {detail}.",
@@ -59,6 +69,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.failed": "{path} could not be used: {detail}.",
     "store.export_failed": "{path} could not be written: {detail}.",
     "store.file_gone": "{path} is no longer there. Was it moved, or a disk taken out?",
+    "store.low_disk": "The disk of {path} is nearly full: {free_mb:0} MB are free, {needed_mb:0} MB are wanted. Make "
+        "room before nothing can be recorded.",
     "store.missing": "There is no store {path}. Take in a file to make one, or name another.",
     "store.needs_passphrase": "{path} is encrypted. Give its passphrase (--passphrase-fd N).",
     "store.network_share": "{path} lies on a network share ({kind}), where locks cannot be relied on. "
@@ -85,5 +97,10 @@ TEMPLATES: Final[dict[str, str]] = {
     "verify.orphan": "Row {seq} claims batch {batch}, which does not own it.",
     "verify.pages": "The file is damaged: {detail}.",
     "verify.trigger": "The safeguard {name} is not as it should be: {what}.",
+    "witness.bad_line": "Line {line} of {path} is no line of a witness file.",
+    "witness.not_borne_out": "The store does not hold the head {head} that was witnessed at {at} (line {line}): what "
+        "was recorded up to then was cut off or replaced.",
+    "witness.unreadable": "{path} cannot serve as a witness: {detail}.",
+    "witness.unwritable": "The witness file {path} could not be written: {detail}.",
     "verify.unreadable": "The store cannot be read to its end: {path}[[ ({detail})]].",
 }  # fmt: skip

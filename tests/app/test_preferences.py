@@ -69,6 +69,8 @@ def test_nothing_of_a_patient_is_among_them():
         "window",
         "person",
         "lock_minutes",
+        "backup_folder",
+        "witness_file",
     }
 
 

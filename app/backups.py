@@ -1,0 +1,78 @@
+"""Automatic backups while a store is open: looked for every few minutes, taken once an hour; a failure is said."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QObject, QTimer, Signal
+
+from app.failure import Failure
+from app.operations import backup as operations
+from app.operations.backup import Rotated, Rotation
+from app.operations.outcome import Outcome
+
+if TYPE_CHECKING:
+    from app.session import SessionModel
+
+LOOK_MS, FIRST_MS = 5 * 60_000, 20_000
+"""How often it is looked whether one is due, and how soon after opening: not in the way of the first screen."""
+
+
+def usual_folder(store: Path) -> Path:
+    """Where a store's backups lie unless another folder is chosen."""
+    return store.parent / "backups"
+
+
+class BackupKeeper(QObject):
+    """Follows one open store. `stands` after each look; `failed` with what went wrong."""
+
+    stands = Signal(object)
+    """`Rotated`."""
+    failed = Signal(object)
+    """`Failure`."""
+
+    def __init__(self, model: SessionModel, folder: str, witness: str, parent: QObject) -> None:
+        super().__init__(parent)
+        self._model = model
+        self.folder = Path(folder) if folder else usual_folder(model.session.store_path)
+        self.witness = witness
+        self.newest: Rotated | None = None
+        self._look = QTimer(self)
+        self._look.setInterval(LOOK_MS)
+        self._look.timeout.connect(self.look)
+        self._first = QTimer(self)
+        self._first.setSingleShot(True)
+        self._first.setInterval(FIRST_MS)
+        self._first.timeout.connect(self.look)
+
+    def start(self) -> None:
+        """Begin to look. A store that cannot be written to has nothing new; the sample is thrown away."""
+        session = self._model.session
+        if not (session.read_only or session.is_demo):
+            self._look.start()
+            self._first.start()
+
+    def stop(self) -> None:
+        """Look no more."""
+        self._look.stop()
+        self._first.stop()
+
+    def look(self) -> None:
+        """Take a backup if one is due."""
+        self._ask(now=False)
+
+    def take_now(self) -> None:
+        """Take a backup, due or not."""
+        self._ask(now=True)
+
+    def _ask(self, *, now: bool) -> None:
+        request = Rotation(self.folder, now, self.witness)
+        self._model.ask(operations.rotate, request, done=self._done, failed=self._failed)
+
+    def _done(self, outcome: Outcome[Rotated]) -> None:
+        self.newest = outcome.value
+        self.stands.emit(outcome.value)
+
+    def _failed(self, failure: Failure) -> None:
+        self.failed.emit(failure)

@@ -1,0 +1,161 @@
+"""Backups from the window: taken by the clock, told of when they fail, restored and salvaged."""
+
+from collections import namedtuple
+
+import pytest
+
+from app.clock import still
+from app.dialogs.store_care import BackupsDialog, RestoreDialog, SalvageDialog
+from app.operations import backup as operations
+from app.operations.backup import RestoreRequest
+from app.preferences import Preferences
+from app.window import MainWindow
+from core.record.instant import HOUR
+from core.record.message import RecordError
+from storage import backup, people
+from storage.backup_rotation import backups_in
+from storage.errors import store_error
+from storage.keys import Cost
+from storage.store import Store
+from tests.support.open_window import NOW, make_store, open_window, settled, until
+
+Usage = namedtuple("Usage", "total used free")
+
+
+@pytest.fixture
+def path(tmp_path):
+    return make_store(tmp_path / "ward.luffmark")
+
+
+def log(qtbot, window, line):
+    head = window.model.session.head
+    window.strip.set_text(line)
+    settled(qtbot, window)
+    window.strip.line.returnPressed.emit()
+    until(qtbot, lambda: window.model.session.head > head)
+
+
+def test_one_is_taken_soon_after_opening_and_then_each_hour(qtbot, path):
+    folder = path.parent / "backups"
+    with open_window(qtbot, path) as window:
+        keeper = window.keeping.backups
+        assert keeper._first.isActive()
+        assert keeper._look.isActive()
+        keeper.look()
+        settled(qtbot, window)
+        assert list(backups_in(folder, path)) == [NOW]
+        keeper.look()
+        settled(qtbot, window)
+        assert len(backups_in(folder, path)) == 1
+    with open_window(qtbot, path, clock=still(NOW + HOUR)) as window:
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert len(backups_in(folder, path)) == 2
+        assert window.keeping.notices.plain() == ""
+
+
+def test_a_backup_that_fails_is_said(qtbot, path, monkeypatch):
+    def fails(*_):
+        raise store_error("store.disk_full", path="ward")
+
+    with open_window(qtbot, path) as window:
+        monkeypatch.setattr(backup, "backup", fails)
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert "No backup was taken" in window.keeping.notices.plain()
+        assert "disk is full" in window.keeping.notices.plain()
+        monkeypatch.undo()
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert window.keeping.notices.plain() == ""
+
+
+def test_a_disk_that_is_nearly_full_is_said_until_there_is_room(qtbot, path, monkeypatch):
+    with open_window(qtbot, path) as window:
+        monkeypatch.setattr(operations.shutil, "disk_usage", lambda _: Usage(10**12, 10**12 - 10**8, 10**8))
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert "nearly full: 100 MB are free" in window.keeping.notices.plain()
+        assert window.keeping.notices.seen.isHidden()
+        monkeypatch.setattr(operations.shutil, "disk_usage", lambda _: Usage(10**12, 0, 10**12))
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert window.keeping.notices.plain() == ""
+
+
+def test_a_user_backs_up_damages_and_restores_from_the_window(qtbot, path):
+    with open_window(qtbot, path) as window:
+        window.actions_by_key["backups"].trigger()
+        dialog = next(d for d in window.findChildren(BackupsDialog) if d.isVisible())
+        assert not dialog.restore.isEnabled()
+        dialog.go.click()
+        until(qtbot, lambda: dialog.table.rowCount() == 1)
+        assert "taken and opened" in dialog.wrong.text()
+        dialog.reject()
+        log(qtbot, window, "rr 25")
+        window.actions_by_key["backups"].trigger()
+        dialog = next(d for d in window.findChildren(BackupsDialog) if d.isVisible())
+        dialog.restore.click()
+        restore = next(d for d in window.findChildren(RestoreDialog) if d.isVisible())
+        assert restore.new.text().endswith("ward-restored.luffmark")
+        restore.go.click()
+        until(qtbot, lambda: restore.told.isVisible())
+        told = restore.told.toPlainText()
+        assert "bed-7: 1 entries" in told or "bed-3: 1 entries" in told
+        restore.open_new.click()
+        until(qtbot, lambda: window.model is not None and "restored" in window.model.session.store_path.name)
+        until(qtbot, lambda: window.feed.is_ready)
+        settled(qtbot, window)
+        window.actions_by_key["check_store"].trigger()
+        until(qtbot, lambda: "sound" in window.strip.plain())
+
+
+def test_a_damaged_store_leads_from_the_first_page_to_what_is_left_of_it(qtbot, path):
+    sound = path.read_bytes()
+    path.write_bytes(sound[:100] + bytes(4000) + sound[4100:])
+    window = MainWindow(Preferences(cautions_seen=True, person="AB"))
+    qtbot.addWidget(window)
+    window.show()
+    window.doers.file.open_path(path)
+    until(qtbot, lambda: window.first is not None and "damaged" in window.first.said.text())
+    window.actions_by_key["salvage"].trigger()
+    dialog = next(d for d in window.findChildren(SalvageDialog) if d.isVisible())
+    assert dialog.source.text() == str(path)
+    dialog.go.click()
+    until(qtbot, lambda: "damaged" in dialog.wrong.text())  # the page that names the tables: only a backup helps
+    assert not path.with_name("ward-salvaged.luffmark").exists()
+    path.write_bytes(sound)
+    dialog.go.click()
+    until(qtbot, lambda: dialog.told.isVisible())
+    assert "Saved:" in dialog.told.toPlainText()
+    assert "Nothing was lost." in dialog.told.toPlainText()
+    dialog.open_new.click()
+    until(qtbot, lambda: window.feed is not None and window.feed.is_ready)
+    assert "Bed 7" in window.pages.ward.first.text()
+    window.close()
+
+
+def test_only_a_ward_lead_restores_where_people_sign_in(path, tmp_path, monkeypatch):
+    monkeypatch.setattr(people.hashed, "__defaults__", (Cost(64, 1, 1),))
+    with Store.open(path) as store:
+        people.add(store, "AB", "2580", people.LEAD, by="AB", now=NOW)
+        people.add(store, "CD", "7391", people.STAFF, by="AB", now=NOW)
+        store.backup(tmp_path / "copy.luff")
+    request = RestoreRequest(tmp_path / "copy.luff", tmp_path / "new.luffmark", None, path)
+    with pytest.raises(RecordError, match=r"people.lead_needed"):
+        operations.restore(None, "CD", NOW, request)
+    assert not request.new.exists()
+    made = operations.restore(None, "AB", NOW, request).value
+    assert made.newer.batches == 0
+    with Store.open(request.new) as new:
+        assert [e.event for e in new.person_events((operations.RESTORED,))] == [operations.RESTORED]
+        assert new.verify() == ()
+
+
+def test_a_witness_takes_the_head_after_each_backup(qtbot, path, tmp_path):
+    with open_window(qtbot, path) as window:
+        window.doers.store.set_witness(tmp_path / "witness.txt")
+        window.keeping.backups.take_now()
+        settled(qtbot, window)
+        with Store.open(path, read_only=True) as store:
+            assert store.printed_head() in (tmp_path / "witness.txt").read_text()
