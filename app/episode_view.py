@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
 
 from app.chart.shapes import Bracket, Tick
 from app.chart.stack import PanelStack
+from app.elided_line import ElidedLine
 from app.episode.readout import Readout
 from app.episode.side import SideColumn
 from app.episode.stack_words import stack_of
@@ -20,6 +21,10 @@ from app.ward.lane_words import indication_word
 from app.words import Reader
 from core.judgement.shapes import GasFigure, ResponseFigure
 from core.record.instant import MINUTE, Instant
+
+TIGHT = 440
+"""Least height at 100 % at which the readout stands still above the charts."""
+SIDE_HEIGHT = 320
 
 
 class EpisodeView(QWidget):
@@ -35,9 +40,10 @@ class EpisodeView(QWidget):
         self._theme = theme
         self._on: EpisodeOnScreen | None = None
         self._now: Instant = 0
+        self._is_tight = False
         self.title = QLabel()
         self.title.setProperty("role", "title")
-        self.about = QLabel()
+        self.about = ElidedLine()
         self.about.setProperty("role", "quiet")
         self.back_button = QPushButton(self.tr("Ward"))
         self.back_button.setToolTip(self.tr("Back to the ward (Esc)"))
@@ -60,8 +66,7 @@ class EpisodeView(QWidget):
         head.setSpacing(px(12))
         head.addWidget(self.back_button)
         head.addWidget(self.title)
-        head.addWidget(self.about)
-        head.addStretch(1)
+        head.addWidget(self.about, 1)
         head.addWidget(self.notice)
         head.addWidget(self.panels_button)
         self.roll = QScrollArea()
@@ -69,17 +74,41 @@ class EpisodeView(QWidget):
         self.roll.setFrameShape(QFrame.Shape.NoFrame)
         self.roll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.roll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
-        self.roll.setWidget(self.stack)
-        left = QVBoxLayout()
+        inside = QWidget()
+        self._rolled = QVBoxLayout(inside)
+        self._rolled.setContentsMargins(0, 0, 0, 0)
+        self._rolled.addWidget(self.stack)
+        self.roll.setWidget(inside)
+        left = self._left = QVBoxLayout()
         left.setSpacing(px(4))
         left.addLayout(head)
         left.addWidget(self.readout)
         left.addWidget(self.roll, 1)
-        row = QHBoxLayout(self)
+        row = self._row = QHBoxLayout(self)
         row.setContentsMargins(px(16), px(4), px(8), px(2))
         row.setSpacing(px(12))
         row.addLayout(left, 1)
         row.addWidget(self.side)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._make_room()
+
+    def _make_room(self) -> None:
+        """Where large text leaves little height, readout, charts and the side column roll under each other."""
+        tight = self.height() < self._theme.px(TIGHT)
+        if tight == self._is_tight:
+            return
+        self._is_tight = tight
+        self.readout.set_rolling(tight)
+        if tight:
+            self._rolled.insertWidget(0, self.readout)
+            self._rolled.addWidget(self.side)
+            self.side.setMinimumHeight(self._theme.px(SIDE_HEIGHT))
+        else:
+            self._left.insertWidget(1, self.readout)
+            self._row.addWidget(self.side)
+            self.side.setMinimumHeight(0)
 
     def _connect(self) -> None:
         self.back_button.clicked.connect(self._back)
@@ -96,6 +125,7 @@ class EpisodeView(QWidget):
         """Take another look or text size; call `show_episode` again after it."""
         self._theme = theme
         self.readout.set_theme(theme)
+        self._make_room()
         self.side.set_theme(theme)
         self.stack.set_theme(theme)
         if self._on is not None:
@@ -113,7 +143,7 @@ class EpisodeView(QWidget):
         if same and instant is not None:
             self.stack.point_at(instant)
         self.title.setText(on.figures.label)
-        self.about.setText(self._about(on))
+        self.about.say(self._about(on))
         self.side.show_figures(on.figures, on.policy, self._reader())
         self._tell(self.stack.instant)
 

@@ -36,6 +36,8 @@ from app.words import Reader, sentence
 from core.record.episode import Episode
 
 MOST_UNDO = 50
+TIGHT = 560
+"""Least height of the window at 100 % at which buttons have a row of their own; their keys and menu stay."""
 
 
 class State(StrEnum):
@@ -121,13 +123,22 @@ class LogStrip(QFrame):
         self._column.setContentsMargins(px(12), px(5), px(12), px(4))
         self._column.setSpacing(px(2))
         self._row.setSpacing(px(8))
-        self.said.setMinimumHeight(round(theme.px(theme.type.body) * 1.25) * 2)
+        self._fit_words(False)
+
+    def _fit_words(self, tight: bool) -> None:
+        """Room for two lines is kept, so that nothing jumps; where height is scarce, for what is said."""
+        line = round(self._theme.px(self._theme.type.body) * 1.25)
+        self.said.setMinimumHeight(line * (1 if tight else 2))
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Where the line would be too short, the keys' buttons stand under it."""
         super().resizeEvent(event)
         buttons = sum(b.sizeHint().width() for b in self.buttons.values())
         rest = self.width() - buttons - self.whom.sizeHint().width()
+        tight = rest < self._theme.px(240) and self.window().height() < self._theme.px(TIGHT)
+        for button in self.buttons.values():
+            button.setVisible(not tight)
+        self._fit_words(tight)
         direction = QBoxLayout.Direction
         self._row.setDirection(
             direction.LeftToRight if rest >= self._theme.px(240) else direction.TopToBottom

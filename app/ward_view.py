@@ -6,13 +6,14 @@ from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from zoneinfo import ZoneInfo
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QFontMetrics, QResizeEvent
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QSizePolicy, QVBoxLayout, QWidget
+from PySide6.QtCore import Signal
+from PySide6.QtGui import QResizeEvent
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QVBoxLayout, QWidget
 
 from app.chart.lanes import WardLanes
 from app.chart.shapes import Lane, LaneItem, LanesSpec
 from app.choice_row import ChoiceRow
+from app.elided_line import ElidedLine
 from app.flow_row import FlowRow
 from app.formats import clock
 from app.readers import reader_at
@@ -25,6 +26,8 @@ from app.ward.see_first import SeeFirst
 from app.words import sentence
 from core.record.instant import Instant
 
+LEAST = 300
+"""Least height at 100 % at which whom to see first has a line of its own."""
 ROOMY = 380
 """Least height at 100 % at which the ward view shows more than its lanes."""
 
@@ -40,34 +43,6 @@ class WardContent:
     gas_unit: str = "mmHg"
     live: bool = True
     """False where the past is looked at: its line is no "now"."""
-
-
-class _Line(QLabel):
-    """One line that is cut with an ellipsis where it does not fit, and whole in its tool tip."""
-
-    def __init__(self) -> None:
-        super().__init__()
-        self._whole = ""
-        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
-
-    def say(self, text: str) -> None:
-        self._whole = text
-        self.setToolTip(text)
-        self.setAccessibleName(text)
-        self._fit()
-
-    def whole(self) -> str:
-        """The text without the cut."""
-        return self._whole
-
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        super().resizeEvent(event)
-        self._fit()
-
-    def _fit(self) -> None:
-        self.setText(
-            QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width())
-        )
 
 
 class WardView(QWidget):
@@ -87,7 +62,7 @@ class WardView(QWidget):
         self._order, self._shown = Order.CONCERN, Shown.ALL
         self.first = SeeFirst(theme)
         self.lanes = WardLanes(theme)
-        self.status = _Line()
+        self.status = ElidedLine()
         self.status.setProperty("role", "quiet")
         self.sort = ChoiceRow(
             self.tr("Sort by"),
@@ -157,6 +132,7 @@ class WardView(QWidget):
         roomy = self.height() >= self._theme.px(ROOMY)
         self.tools.setVisible(roomy)
         self.status.setVisible(roomy)
+        self.first.setVisible(self.height() >= self._theme.px(LEAST))  # its lane stands on top and says so too
         if self._legend is not None:
             self._legend.setVisible(roomy)
 

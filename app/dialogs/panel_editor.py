@@ -17,6 +17,7 @@ from PySide6.QtWidgets import (
     QListWidget,
     QListWidgetItem,
     QPushButton,
+    QScrollArea,
     QSlider,
     QVBoxLayout,
     QWidget,
@@ -62,7 +63,8 @@ class PanelEditor(QDialog):
         self._lay_out()
         self._connect()
         self._show(panels.panels[0].key)
-        self.resize(theme.px(860), theme.px(660))
+        room = parent.window().size() if parent is not None else self.screen().availableGeometry().size()
+        self.resize(min(theme.px(860), room.width() - 24), min(theme.px(660), room.height() - 24))
 
     def _lay_out(self) -> None:
         px = self._theme.px
@@ -75,7 +77,15 @@ class PanelEditor(QDialog):
         upper = QHBoxLayout()
         upper.addLayout(left, 2)
         upper.addLayout(self._fields(), 3)
-        column = QVBoxLayout(self)
+        inside = QWidget()
+        roll = QScrollArea()
+        roll.setWidgetResizable(True)
+        roll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        roll.setWidget(inside)
+        outer = QVBoxLayout(self)
+        outer.setContentsMargins(0, 0, 0, 0)
+        outer.addWidget(roll)
+        column = QVBoxLayout(inside)
         column.setContentsMargins(px(16), px(16), px(16), px(16))
         column.addWidget(self.sets)
         column.addLayout(upper, 1)

@@ -25,11 +25,14 @@ class Readout(QFrame):
     def __init__(self, theme: Theme) -> None:
         super().__init__()
         self._theme = theme
+        self._rolling = False
         self._settings, self._values = QLabel(), QLabel()
         for label in (self._settings, self._values):
             label.setTextFormat(Qt.TextFormat.RichText)
             label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
         self._values.setWordWrap(True)
+        self._settings.setWordWrap(True)
+        self._settings.setAlignment(Qt.AlignmentFlag.AlignTop)
         self._values.setAlignment(Qt.AlignmentFlag.AlignTop)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
@@ -42,8 +45,23 @@ class Readout(QFrame):
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
         self._theme = theme
+        self._fit()
+
+    def set_rolling(self, rolling: bool) -> None:
+        """Rolling with the charts, it takes the height that its words need; standing, it never moves anything."""
+        self._rolling = rolling
+        self._fit()
+
+    def _fit(self) -> None:
+        theme = self._theme
+        if self._rolling:
+            for label in (self._settings, self._values):
+                label.setMinimumHeight(0)
+                label.setMaximumHeight(16_777_215)
+                label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Minimum)
+            return
         line = round(theme.px(theme.type.body) * 1.45)
-        self._settings.setFixedHeight(line)
+        self._settings.setFixedHeight(line * (1 if theme.text_scale < 1.3 else 2 if theme.text_scale < 1.75 else 3))
         self._values.setFixedHeight(
             line * (2 if theme.text_scale < 1.3 else 3 if theme.text_scale < 1.75 else 4)
         )

@@ -70,3 +70,32 @@ def test_what_stands_at_the_right_end_does(qtbot):
     made[1].hide()
     parent.resize(401, 20)
     qtbot.waitUntil(lambda: made[2].x() == 341)
+
+
+@pytest.mark.parametrize("scale", [1.0, 1.5, 2.0])
+def test_the_readout_is_whole_and_the_side_can_be_reached(qtbot, tmp_path, scale):
+    preferences = Preferences(text_scale=scale, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(1280, 800)
+        window.open_episode("bed-7")
+        settled(qtbot, window)
+        qtbot.wait(20)
+        view = window.pages.episode
+        for label in view.readout.findChildren(QLabel):
+            assert label.height() >= label.heightForWidth(label.width()) - 2, label.text()
+        inside = view.roll.widget()
+        assert inside.width() <= view.roll.viewport().width()
+        view.roll.verticalScrollBar().setValue(view.roll.verticalScrollBar().maximum())
+        window.resize(1920, 1400)
+        qtbot.wait(20)
+        assert view.side.isVisible()
+
+
+def test_large_text_leaves_room_for_two_lanes(qtbot, tmp_path):
+    preferences = Preferences(text_scale=2.0, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(1280, 800)
+        settled(qtbot, window)
+        qtbot.wait(20)
+        assert window.pages.ward.lanes.height() >= window.theme.px(180)
+        assert window.strip.said.height() > 0
