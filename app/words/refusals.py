@@ -59,6 +59,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "line.mode_contradicts": "{mode} has no {channel:name} pressure. For example: {accepted}.",
     "line.mode_needed": "{mode} is in force, which has no IPAP. Name the mode too, e.g. {accepted}.",
     "line.number_alone": "The number {value} alone does not say what it is. For example: {accepted}",
+    "line.oxygen_unclear": "Oxygen {value} could be a flow or an FiO2. Say which: {accepted}.",
     "line.ps_means_ipap": "Pressure support {ps} over EPAP {epap:trim} is IPAP {ipap:trim} cmH2O.",
     "line.too_long": "The line is too long. Accepted: at most {accepted}.",
     "line.twice": "{channel:name} stands twice on the line. Accepted: {accepted}.",
@@ -108,6 +109,7 @@ TEMPLATES: Final[dict[str, str]] = {
         "Accepted: {accepted}.",
     "settings.late_contradiction":
         "With what came later, IPAP {ipap:trim} is not above EPAP {epap:trim} cmH2O. Accepted: {accepted}.",
+    "time.not_yet": "{value} has not come yet. Accepted: {accepted}.",
     "time.repeated": "{value} came twice: the clock was set back. Say which: {accepted}.",
     "time.skipped": "{value} was never shown: the clock was set forward. Accepted: {accepted}.",
     "time.unreadable": "'{value}' is no time of day. Accepted: {accepted}.",

@@ -11,6 +11,9 @@ from core.record.gas_sample import GasSample
 from core.record.message import Message
 from core.record.reading import Reading
 from core.record.settings import Settings
+from core.record.units import MMHG_PER_KPA
+
+LEAST_MMHG = 20.0
 
 
 def gas_doubts(
@@ -39,6 +42,7 @@ def gas_doubts(
         difference = hco3 - calculated
         values = {"hco3": hco3, "calculated": calculated, "difference": difference, "within": within}
         asks.append(Message("gas.inconsistent", values))
+    asks += _kilopascals(readings)
     own, setting = value("gas_fio2"), in_force.fio2
     if (
         not isnan(own)
@@ -51,3 +55,12 @@ def gas_doubts(
     if not isnan(gradient) and gradient < 0:
         asks.append(Message("gas.negative_gradient", {"aa": gradient, "fio2": fio2}))
     return tuple(asks)
+
+
+def _kilopascals(readings: Sequence[Reading]) -> list[Message]:
+    """A PaCO2 this low in mmHg is hardly compatible with life: it is likelier to be a figure in kPa."""
+    return [
+        Message("gas.kpa_suspected", {"value": r.number, "mmHg": r.number * MMHG_PER_KPA})
+        for r in readings
+        if r.channel.key == "paco2" and r.raw_unit == "mmHg" and r.number is not None and r.number < LEAST_MMHG
+    ]

@@ -169,7 +169,7 @@ _SETTING = (
     _number("ipap", "IPAP", S, u.CMH2O, (2, 60), (6, 30), 1, ("i",)),
     _number("epap", "EPAP", S, u.CMH2O, (0, 30), (3, 12), 1, ("e",)),
     _number("cpap", "CPAP", S, u.CMH2O, (0, 30), (4, 15), 1),
-    _number("fio2", "FiO2", S, u.FRACTION, (0.21, 1.0), None, 2, ("o2",)),
+    _number("fio2", "FiO2", S, u.FRACTION, (0.21, 1.0), None, 2),
     _number("o2_flow", "Oxygen flow", S, u.L_PER_MIN, (0, 80), None, 1, ("flow",)),
     _number("rate_set", "Backup rate", S, u.PER_MIN, (0, 60), (8, 25), 0, ("br", "backup")),
     _number("ti", "Inspiratory time", S, u.SECONDS, (0.2, 4), (0.6, 1.8), 2),

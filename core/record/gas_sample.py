@@ -74,7 +74,17 @@ def _one(at: Instant, rows: list[Standing]) -> GasSample | None:
         texts={s.entry.channel: (s.entry.raw, s.entry.raw_unit) for s in rows},
         doubt=any(s.entry.doubt for s in rows),
         corrected=any(s.corrected for s in rows),
-        disputed=any(s.disputed for s in rows),
+        disputed=any(s.disputed for s in rows) or _two_values(rows),
         recorded_at=max(s.entry.recorded_at for s in rows),
         ids=tuple(s.entry.id for s in rows),
     )
+
+
+def _two_values(rows: list[Standing]) -> bool:
+    """Whether one channel was given two different values for this moment: the later stands, and it is disputed."""
+    seen: dict[str, float | str | None] = {}
+    for s in rows:
+        value = s.entry.number if s.entry.number is not None else s.entry.words
+        if seen.setdefault(s.entry.channel, value) != value:
+            return True
+    return False

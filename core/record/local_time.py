@@ -5,11 +5,14 @@ from __future__ import annotations
 from datetime import UTC, date, datetime, time, timedelta
 from zoneinfo import ZoneInfo
 
-from core.record.instant import MINUTE, Instant, from_datetime, to_datetime
+from core.record.instant import HOUR, MINUTE, Instant, from_datetime, to_datetime
 from core.record.message import refuse
 
 LEAD = 5 * MINUTE
 """A typed time may lead the clock by this much: clocks on a ward differ."""
+
+SOON = 3 * HOUR
+"""A typed time this far ahead is asked about: yesterday's is rarely meant, a slip of the finger often is."""
 
 
 def local(at: Instant, zone: str) -> datetime:
@@ -37,14 +40,18 @@ def candidates(day: date, wall: time, zone: str) -> tuple[Instant, ...]:
     return tuple(found)
 
 
-def latest_wall_time(hour: int, minute: int, *, now: Instant, zone: str, which: str = "") -> Instant:
+def latest_wall_time(
+    hour: int, minute: int, *, now: Instant, zone: str, which: str = "", yesterday: bool = False
+) -> Instant:
     """The newest moment at or before now (5 min of lead allowed) at which the wall clock showed the time.
 
-    So `23:50` typed at 00:10 is yesterday's. `which` is "first" or "second" for an hour that came twice.
+    So `23:50` typed at 00:10 is yesterday's. A time that comes within the next `SOON` is more likely a slip than
+    yesterday's: it is refused, and `yesterday` says that it was meant. `which` is "first" or "second" for an hour
+    that came twice.
 
     Raises:
-        RecordError: `time.unreadable`; `time.skipped` for a time the clock never showed; `time.repeated` for
-            a time that came twice when `which` is not said.
+        RecordError: `time.unreadable`; `time.not_yet` for a time still to come; `time.skipped` for a time the clock
+            never showed; `time.repeated` for a time that came twice when `which` is not said.
 
     >>> from core.record.instant import parse, iso
     >>> iso(latest_wall_time(23, 50, now=parse("2026-03-28T00:10:00+00:00"), zone="UTC"))
@@ -54,16 +61,26 @@ def latest_wall_time(hour: int, minute: int, *, now: Instant, zone: str, which: 
     if not (0 <= hour <= 23 and 0 <= minute <= 59):
         raise refuse("time.unreadable", value=shown, accepted="00:00 to 23:59")
     today = local(now, zone).date()
-    for days_back in (0, 1):
+    near = [t for t in _around(today, hour, minute, zone) if now - SOON <= t <= now + SOON]
+    if near and near[0] > now + LEAD and not yesterday:
+        raise refuse("time.not_yet", value=shown, at=near[0], accepted=f"a time up to now, or: yesterday {shown}")
+    for days_back in (1,) if yesterday else (0, 1):
         day = today - timedelta(days=days_back)
-        if not candidates(day, time(hour, minute), zone):
+        found = candidates(day, time(hour, minute), zone)
+        if not found:
             if days_back == 0 and local(now, zone).time() >= time(hour, minute):
                 raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
             continue
-        past = [t for t in candidates(day, time(hour, minute), zone) if t <= now + LEAD]
+        past = [t for t in found if t <= now + LEAD]
         if past:
             return _chosen(past, which, shown)
     raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
+
+
+def _around(today: date, hour: int, minute: int, zone: str) -> tuple[Instant, ...]:
+    """The moments of a wall time today and tomorrow: after 23:00 a slip may lie beyond midnight."""
+    wall = time(hour, minute)
+    return candidates(today, wall, zone) + candidates(today + timedelta(days=1), wall, zone)
 
 
 def _chosen(past: list[Instant], which: str, shown: str) -> Instant:

@@ -3,7 +3,7 @@
 The grammar, in order:
 
     [time] item...
-    time   14:20 | first 01:30 | second 01:30 | 20m ago | 1h ago | now
+    time   14:20 | yesterday 23:40 | first 01:30 | second 01:30 | 20m ago | 1h ago | now
     item   16/6 [35]             IPAP / EPAP, then FiO2
            ps 10                 pressure support: IPAP is EPAP + 10
            bp 118/64             systolic / diastolic pressure
@@ -28,15 +28,21 @@ from core.record.local_time import latest_wall_time
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
 from core.record.settings import Settings
+from core.record.units import MMHG_GAS
 
 EXAMPLE = "16/6 35 | ipap 16 epap 6 fio2 35% | 14:20 rr 28 spo2 91 | gas sent | note ..."
 
-_TIME = re.compile(r"(?:(first|second)\s+)?(\d{1,2}):(\d{2})(?:\s+(first|second)\b)?(?=\s|$)", re.IGNORECASE)
+_TIME = re.compile(
+    r"(yesterday\s+)?(?:(first|second)\s+)?(\d{1,2}):(\d{2})(?:\s+(first|second)\b)?(?=\s|$)", re.IGNORECASE
+)
 _AGO = re.compile(r"(\d{1,3})\s*(m|min|h)\s+ago(?=\s|$)", re.IGNORECASE)
 _NUMBER = re.compile(r"[+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+)")
 _VALUE = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))(.*)")
 _PAIR = re.compile(r"(\d+(?:[.,]\d+)?)/(\d+(?:[.,]\d+)?)")
 _MODE_WORDS = {"st": "BPAP-ST", "hfn": "high-flow nasal"} | {m.casefold(): m for m in MODES}
+OXYGEN_FORMS = "fio2 40% | flow 4"
+LEAST_PERCENT = 21.0
+"""No flow of a mask or a wall reaches this in L/min but high-flow oxygen, which is set by FiO2 as well."""
 LONG_AGO = 8 * HOUR
 """A typed time further back than most of a shift is said aloud before it is recorded."""
 _TAKES_REST = frozenset({"note", "told", "drug", "review", "alarm"})
@@ -70,9 +76,16 @@ class LogLine:
 
 
 def read_line(
-    text: str, *, now: Instant, zone: str, in_force: Settings | Callable[[Instant], Settings]
+    text: str,
+    *,
+    now: Instant,
+    zone: str,
+    in_force: Settings | Callable[[Instant], Settings],
+    gas_unit: str = "mmHg",
 ) -> LogLine:
     """Read one line over the settings in force at its moment (`SettingsInForce.at` serves as `in_force`).
+
+    A gas pressure typed without a unit is in `gas_unit`, the ward's own.
 
     Raises:
         RecordError: naming the word that could not be read and what is accepted.
@@ -81,7 +94,7 @@ def read_line(
     if not rest:
         raise refuse("line.empty", accepted=EXAMPLE)
     before = in_force if isinstance(in_force, Settings) else in_force(at)
-    reader = _Items(rest.split(), before)
+    reader = _Items(rest.split(), before, gas_unit)
     readings = reader.read()
     if typed and now - at > LONG_AGO:
         reader.notes.append(Message("line.long_ago", {"hours": (now - at) / HOUR}))
@@ -96,8 +109,9 @@ def read_line(
 
 def _read_time(text: str, now: Instant, zone: str) -> tuple[Instant, str, bool]:
     if match := _TIME.match(text):
-        which = (match[1] or match[4] or "").lower()
-        at = latest_wall_time(int(match[2]), int(match[3]), now=now, zone=zone, which=which)
+        which = (match[2] or match[5] or "").lower()
+        hour, minute = int(match[3]), int(match[4])
+        at = latest_wall_time(hour, minute, now=now, zone=zone, which=which, yesterday=bool(match[1]))
         return at, text[match.end() :].strip(), True
     if match := _AGO.match(text):
         unit = HOUR if match[2].lower() == "h" else MINUTE
@@ -138,8 +152,9 @@ _CHANNEL_WORDS = words_of_channels()
 class _Items:
     """Reads the items of a line from left to right."""
 
-    def __init__(self, words: list[str], in_force: Settings) -> None:
+    def __init__(self, words: list[str], in_force: Settings, gas_unit: str) -> None:
         self.words = words
+        self.gas_unit = gas_unit
         self.i = 0
         self.in_force = in_force
         self.notes: list[Message] = []
@@ -169,6 +184,8 @@ class _Items:
             self.support = self._next_number("ps")
         elif (channel := self._channel()) is not None:
             self._channel_item(channel)
+        elif low in ("o2", "oxygen"):
+            self._oxygen()
         elif low in _MODE_WORDS:
             self.i += 1
             self._add("mode", _MODE_WORDS[low])
@@ -257,6 +274,13 @@ class _Items:
             self.i += 1
             self._add("fio2", match[1], match[2])
 
+    def _next_text(self, name: str) -> str:
+        self.i += 1
+        if self.i >= len(self.words):
+            raise refuse("line.value_missing", channel=name, accepted=f"{name} NUMBER")
+        self.i += 1
+        return self.words[self.i - 1]
+
     def _next_number(self, name: str) -> str:
         self.i += 1
         if self.i >= len(self.words) or not _NUMBER.fullmatch(self.words[self.i]):
@@ -265,7 +289,23 @@ class _Items:
         return self.words[self.i - 1]
 
     def _add(self, key: str, text: str, unit: str = "") -> None:
+        if not unit and CHANNELS[key].units is MMHG_GAS:
+            unit = self.gas_unit
         self.readings.append(read_value(CHANNELS[key], text, unit))
+
+    def _oxygen(self) -> None:
+        """`o2 35%` is an FiO2, `o2 4 l` a flow; a small bare number could be either, so it is asked about."""
+        number = self._next_text("o2")
+        match = _VALUE.fullmatch(number)
+        if match is None:
+            raise refuse("value.not_a_number", channel="o2", value=number, accepted=OXYGEN_FORMS)
+        unit = match[2].casefold() or self._unit_word(CHANNELS["o2_flow"])
+        if unit in ("%", "percent", "pct") or (not unit and float(match[1].replace(",", ".")) >= LEAST_PERCENT):
+            self._add("fio2", match[1], unit)
+        elif unit:
+            self._add("o2_flow", match[1], unit)
+        else:
+            raise refuse("line.oxygen_unclear", value=number, accepted=OXYGEN_FORMS)
 
     def _got(self, key: str) -> Reading | None:
         return next((r for r in self.readings if r.channel.key == key), None)

@@ -61,3 +61,10 @@ def test_between_takes_both_ends():
     assert spo2.between(moment("01:00"), moment("01:10")).v.tolist() == [20.0, 21.0]
     assert spo2.last_at_or_before(moment("01:09")) == 0
     assert spo2.last_at_or_before(moment("00:59")) == -1
+
+
+def test_two_values_of_one_channel_for_one_moment_are_disputed_and_the_later_stands():
+    (gas,) = episode("02:00 ph 7.30 paco2 60\n02:00 ph 7.10").gases
+    assert (gas.ph, gas.disputed) == (7.10, True)
+    (same,) = episode("02:00 ph 7.30 paco2 60\n02:00 ph 7.30").gases
+    assert not same.disputed

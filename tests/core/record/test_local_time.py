@@ -21,7 +21,26 @@ def test_a_time_after_midnight_is_yesterdays_when_it_has_not_come_yet():
 
 def test_a_time_may_lead_the_clock_by_five_minutes():
     assert moment(0, 14, "2026-03-28T00:10:00+00:00") == "2026-03-28T00:14:00+00:00"
-    assert moment(0, 16, "2026-03-28T00:10:00+00:00") == "2026-03-27T00:16:00+00:00"
+    with pytest.raises(RecordError, match=r"time\.not_yet"):
+        moment(0, 16, "2026-03-28T00:10:00+00:00")
+
+
+@pytest.mark.parametrize(
+    ("hour", "minute", "now"),
+    [
+        (5, 40, "2026-03-28T05:30:00+00:00"),
+        (0, 10, "2026-03-27T22:30:00+00:00"),
+        (8, 29, "2026-03-28T05:30:00+00:00"),
+    ],
+)
+def test_a_time_still_to_come_is_refused_and_never_taken_for_yesterdays(hour, minute, now):
+    with pytest.raises(RecordError, match=r"time\.not_yet"):
+        moment(hour, minute, now)
+
+
+def test_yesterday_is_taken_when_it_is_said():
+    assert moment(5, 40, "2026-03-28T05:30:00+00:00", yesterday=True) == "2026-03-27T05:40:00+00:00"
+    assert moment(9, 0, "2026-03-28T05:30:00+00:00") == "2026-03-27T09:00:00+00:00"
 
 
 def test_a_time_that_the_clock_skipped_is_refused():

@@ -44,6 +44,10 @@ def values(text, in_force=BILEVEL):
         ("bpap-s", {"mode": "BPAP-S"}),
         ("cpap", {"mode": "CPAP"}),
         ("o2 flow 3", {"o2_flow": 3.0}),
+        ("o2 35%", {"fio2": 0.35}),
+        ("o2 35", {"fio2": 0.35}),
+        ("o2 4 l", {"o2_flow": 4.0}),
+        ("o2 4l/min", {"o2_flow": 4.0}),
         ("ceiling of care no intubation", {"ceiling_of_care": "no intubation"}),
     ],
 )
@@ -57,6 +61,13 @@ def test_a_gas_in_kilopascal_keeps_what_was_typed():
         ("ph", "7,26", "pH"),
         ("paco2", "8.3", "kPa"),
     ]
+
+
+def test_a_gas_pressure_without_a_unit_is_in_the_wards():
+    line = read_line("ph 7.26 paco2 8.3 pao2 8", now=NOW, zone="UTC", in_force=BILEVEL, gas_unit="kPa")
+    assert [(r.channel.key, r.raw_unit) for r in line.readings] == [("ph", "pH"), ("paco2", "kPa"), ("pao2", "kPa")]
+    said = read_line("paco2 62 mmHg bp 120/70", now=NOW, zone="UTC", in_force=BILEVEL, gas_unit="kPa")
+    assert [r.raw_unit for r in said.readings] == ["mmHg", "mmHg", "mmHg"]
 
 
 def test_one_pressure_makes_the_mode_cpap_and_says_so():
@@ -73,6 +84,7 @@ def test_the_support_before_and_after_is_shown():
 
 def test_times_are_read():
     assert iso(read("01:40 rr 20").at) == "2026-03-28T01:40:00+00:00"
+    assert iso(read("yesterday 23:40 rr 20").at) == "2026-03-27T23:40:00+00:00"
     assert read("20m ago rr 20").at == NOW - 20 * MINUTE
     assert read("1h ago rr 20").at == NOW - 60 * MINUTE
     assert read("rr 20").at == NOW
@@ -98,6 +110,8 @@ def test_the_settings_in_force_are_those_of_the_lines_own_moment():
         ("foo 3", BILEVEL, "line.word_unknown"), ("ipap", BILEVEL, "line.value_missing"),
         ("ipap 70", BILEVEL, "value.past_hard_limit"), ("ipap 14 ipap 15", BILEVEL, "line.twice"),
         ("ps 10 ipap 15", BILEVEL, "line.twice"), ("mode bilevel", BILEVEL, "value.not_a_choice"),
+        ("o2 4", BILEVEL, "line.oxygen_unclear"), ("o2", BILEVEL, "line.value_missing"),
+        ("02:40 rr 20", BILEVEL, "time.not_yet"),
         ("25:10 rr 20", BILEVEL, "time.unreadable"), ("note", BILEVEL, None),
     ],
 )  # fmt: skip
