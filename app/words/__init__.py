@@ -19,6 +19,8 @@ __all__ = ["Reader", "sentence", "templates"]
 _log = logging.getLogger("luffmark")
 DEFAULT = Reader()
 _NAME_FIRST = re.compile(r"\{\w+:(name|marker|due)\}")
+_LIST_FIRST = re.compile(r"\[\[[^\]]*, \]\]")
+"""A list whose first members may be left out, so that any of them may begin the sentence."""
 
 
 @lru_cache(maxsize=1)
@@ -67,4 +69,5 @@ def sentence(message: Message, reader: Reader = DEFAULT) -> str:
         values = ", ".join(f"{k} {v}" for k, v in message.values.items())
         return f"{message.key}: {values}" if values else message.key
     text = fill(reader.translate(template), message.values, reader)
-    return text[:1].upper() + text[1:] if _NAME_FIRST.match(template) and text[:2] != "pH" else text
+    starts_small = _NAME_FIRST.match(template) or _LIST_FIRST.match(template)
+    return text[:1].upper() + text[1:] if starts_small and text[:2] != "pH" else text

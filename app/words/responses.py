@@ -4,23 +4,27 @@ from typing import Final
 
 _SIDE = "baseline=the baseline gas;before=the baseline gas;gas=this gas;after=this gas;else=a gas"
 _WHO = "baseline=The baseline gas;gas=This gas;else=A gas"
+_PRESSURES = (
+    "[[IPAP {ipap_before:trim} to {ipap_after:trim}, ]][[EPAP {epap_before:trim} to {epap_after:trim}, ]]"
+)
 
 TEMPLATES: Final[dict[str, str]] = {
     "effect.epap_lowers_support":
-        "Raising EPAP alone lowers pressure support: {before:trim} to {after:trim} cmH2O.",
+        "Raising EPAP alone lowers pressure support: EPAP {epap_before:trim} to {epap_after:trim}, "
+        "pressure support {before:trim} to {after:trim} cmH2O.",
     "effect.expiratory_pressure": "Expiratory pressure {before:trim} to {after:trim} cmH2O.",
     "effect.fio2": "FiO2 {before:fraction} to {after:fraction}.",
     "effect.fio2_not_known": "FiO2 is no longer known[[ (was {before:fraction})]].",
     "effect.interface": "Interface {before} to {after}.",
     "effect.mode": "Mode {before} to {after}.",
     "effect.o2_flow": "Oxygen flow {before:trim} to {after:trim} L/min.",
-    "effect.pressure_support": "Pressure support {before:trim} to {after:trim} cmH2O.",
+    "effect.pressure_support": _PRESSURES + "pressure support {before:trim} to {after:trim} cmH2O.",
     "effect.rate": "Backup rate {before:trim} to {after:trim}/min.",
     "effect.rate_none":
         "Backup rate {before:trim} to {after:trim}/min takes no effect: the own rate is {own_rate:0}/min.",
     "effect.rate_not_known":
         "Backup rate {before:trim} to {after:trim}/min; whether it takes effect is not known (no own rate).",
-    "effect.support_kept": "Pressure support stays {after:trim} cmH2O.",
+    "effect.support_kept": _PRESSURES + "pressure support stays {after:trim} cmH2O.",
     "effect.ti": "Inspiratory time {before:trim} to {after:trim} s.",
     "response.acidosis_off_support": "Acidosis off support: pH {ph:2} at {gas_at:time}.",
     "response.also_changed": "{steps:pick 1=One other change;else=Other changes} in between, "

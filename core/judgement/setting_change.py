@@ -11,7 +11,7 @@ from math import isnan
 
 from core.judgement.shapes import Step
 from core.record.instant import Instant
-from core.record.message import Message
+from core.record.message import Message, Value
 from core.record.settings import Settings
 
 CO2, OXYGEN = "co2", "oxygen"
@@ -152,7 +152,7 @@ def effect_of_change(before: Settings, after: Settings, own_rate: float | None) 
     >>> from math import nan
     >>> was = Settings("BPAP-ST", 16, 5, nan, 0.35, nan, 14, nan, None)
     >>> [m.key for m in effect_of_change(was, Settings("BPAP-ST", 16, 8, nan, 0.35, nan, 14, nan, None), 24)]
-    ['effect.epap_lowers_support', 'effect.expiratory_pressure']
+    ['effect.epap_lowers_support']
     """
     steps = changed(0, before, after)
     by_channel = {s.channel: s for s in steps}
@@ -169,17 +169,20 @@ def effect_of_change(before: Settings, after: Settings, own_rate: float | None) 
 
 
 def _pressure_words(steps: dict[str, Step], before: Settings, after: Settings) -> list[Message]:
+    """Pressure support with the pressures that moved it: where IPAP moves too, nothing moved "alone"."""
+    values: dict[str, Value] = {"before": number(before.pressure_support), "after": number(after.pressure_support)}
+    for channel in ("ipap", "epap"):
+        if channel in steps and before.is_bilevel:
+            values |= {f"{channel}_before": steps[channel].before, f"{channel}_after": steps[channel].after}
     said: list[Message] = []
-    support = {"before": number(before.pressure_support), "after": number(after.pressure_support)}
-    low = {"before": number(before.low_pressure), "after": number(after.low_pressure)}
     if _moved(before.pressure_support, after.pressure_support):
-        lowered_by_epap = "epap" in steps and after.low_pressure > before.low_pressure and after.is_bilevel
-        lowered_by_epap = lowered_by_epap and after.pressure_support < before.pressure_support
-        key = "effect.epap_lowers_support" if lowered_by_epap else "effect.pressure_support"
-        said.append(Message(key, support))
+        alone = before.is_bilevel and after.is_bilevel and "epap" in steps and "ipap" not in steps
+        lowered = alone and after.low_pressure > before.low_pressure
+        said.append(Message("effect.epap_lowers_support" if lowered else "effect.pressure_support", values))
     elif "ipap" in steps and "epap" in steps:
-        said.append(Message("effect.support_kept", support))
-    if steps.keys() & {"epap", "cpap"}:
+        said.append(Message("effect.support_kept", values))
+    if steps.keys() & {"epap", "cpap"} and not (said and "epap_after" in values):
+        low = {"before": number(before.low_pressure), "after": number(after.low_pressure)}
         said.append(Message("effect.expiratory_pressure", low))
     return said
 

@@ -49,7 +49,7 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
     said = window.strip.plain()
     assert "Bed 7" in said
     assert "IPAP 22 cmH2O" in said
-    assert "Pressure support 13 to 16 cmH2O" in said
+    assert "pressure support 13 to 16 cmH2O" in said
     qtbot.keyClick(window.strip.line, Key.Key_Return)
     until(qtbot, lambda: len(settings_in(window)) > len(before))
     assert "IPAP 18 to 22 cmH2O" in settings_in(window)[-1]

@@ -58,7 +58,7 @@ def test_a_change_of_settings_by_keys_is_shown_recorded_and_undone(qtbot, window
     assert form.acts.text() == "can act on CO2"
     assert form.cells["ipap"].note.text() == "was 18"
     assert "IPAP 20 cmH2O" in form.plain()
-    assert "Pressure support 13 to 15 cmH2O" in form.plain()
+    assert "pressure support 13 to 15 cmH2O" in form.plain()
     assert "Bed 7, now (05:30)" in form.plain()
     assert window.model.session.head == head
     qtbot.keyClick(form, Key.Key_Return)
@@ -87,7 +87,7 @@ def test_buttons_do_what_arrow_keys_do_and_the_wheel_does_nothing(qtbot, window)
 def test_raising_epap_alone_says_that_it_lowers_support(qtbot, window):
     form = opened(qtbot, window, Key.Key_F10, SettingsForm)
     type_into(qtbot, window, form.fields["epap"], "8")
-    assert "lowers pressure support: 13 to 10" in form.plain()
+    assert "lowers pressure support: EPAP 5 to 8, pressure support 13 to 10" in form.plain()
     assert form.acts.text() == "can act on CO2 and oxygen"
     form.reject()
 

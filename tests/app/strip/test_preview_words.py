@@ -23,12 +23,25 @@ def test_settings_with_support_before_and_after():
     words = said("22/6 40")
     assert words.head == "Bed 7, now (05:30)"
     assert words.values == ("IPAP 22 cmH2O", "EPAP 6 cmH2O", "FiO2 40 %")
-    assert "Pressure support 14 to 16 cmH2O." in words.effects
+    assert "IPAP 20 to 22, pressure support 14 to 16 cmH2O." in words.effects
     assert words.questions == ()
 
 
 def test_a_raised_epap_alone_says_that_it_lowers_support():
-    assert any("lowers pressure support: 14 to 12" in e for e in said("epap 8").effects)
+    expected = "Raising EPAP alone lowers pressure support: EPAP 6 to 8, pressure support 14 to 12 cmH2O."
+    assert expected in said("epap 8").effects
+
+
+def test_both_pressures_are_named_where_both_move():
+    assert "IPAP 20 to 14, EPAP 6 to 7, pressure support 14 to 7 cmH2O." in said("14/7").effects
+    assert "IPAP 20 to 22, EPAP 6 to 8, pressure support stays 14 cmH2O." in said("22/8").effects
+    assert not any("alone" in e for e in (*said("14/7").effects, *said("22/8 40").effects))
+
+
+def test_support_from_another_kind_begins_with_a_capital():
+    record = record_of("E", [("20:00", {"label": "Bed 1"}), ("20:10", {"mode": "CPAP", "cpap": "8"})])
+    told = said("bpap-st 14/6", record, at("21:00")).effects
+    assert told[:2] == ("Pressure support 0 to 8 cmH2O.", "Expiratory pressure 8 to 6 cmH2O.")
 
 
 def test_a_rate_below_the_own_rate_says_that_it_takes_no_effect():

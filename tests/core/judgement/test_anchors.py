@@ -23,8 +23,8 @@ def settings(
     ("after", "own_rate", "keys", "acts"),
     [
         (settings(ipap=20), 24, ["effect.pressure_support"], ("co2",)),
-        (settings(epap=8), 24, ["effect.epap_lowers_support", "effect.expiratory_pressure"], ("co2", "oxygen")),
-        (settings(ipap=19, epap=8), 24, ["effect.support_kept", "effect.expiratory_pressure"], ("oxygen",)),
+        (settings(epap=8), 24, ["effect.epap_lowers_support"], ("co2", "oxygen")),
+        (settings(ipap=19, epap=8), 24, ["effect.support_kept"], ("oxygen",)),
         (settings(fio2=0.5), 24, ["effect.fio2"], ("oxygen",)),
         (settings(fio2=nan, flow=6), 24, ["effect.fio2_not_known", "effect.o2_flow"], ("oxygen",)),
         (settings(rate=18), 24, ["effect.rate_none"], ()),
@@ -40,6 +40,15 @@ def test_effect_of_change(after: Settings, own_rate: float | None, keys: list[st
     before = settings()
     assert [m.key for m in effect_of_change(before, after, own_rate)] == keys
     assert effects(changed(0, before, after), before, after, own_rate) == acts
+
+
+@pytest.mark.parametrize(("ipap", "epap", "support"), [(16, 6, 10), (22, 6, 16), (20, 9, 11), (28, 4, 24)])
+def test_both_pressures_are_named_where_both_move(ipap: float, epap: float, support: float) -> None:
+    told = effect_of_change(settings(ipap=24), settings(ipap=ipap, epap=epap), 24)
+    assert [m.key for m in told] == ["effect.pressure_support"]
+    assert dict(told[0].values) == {
+        "ipap_before": 24, "ipap_after": ipap, "epap_before": 5, "epap_after": epap, "before": 19, "after": support,
+    }  # fmt: skip
 
 
 def test_a_lowered_backup_rate_acts_when_the_patient_rides_on_it() -> None:
