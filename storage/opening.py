@@ -52,14 +52,15 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
             database.close()
             raise
     except BaseException:
-        for made in (
-            path,
-            keys.envelope_path(path),
-            *(path.with_name(path.name + end) for end in ("-wal", "-shm")),
-        ):
-            made.unlink(missing_ok=True)
+        remove(path)
         raise
     return Opened(database, key, facts, (), new.recovery_code if new else None)
+
+
+def remove(path: Path) -> None:
+    """Remove a store that could not be finished, with all that lies beside it."""
+    for made in (path, keys.envelope_path(path), *(path.with_name(path.name + end) for end in ("-wal", "-shm"))):
+        made.unlink(missing_ok=True)
 
 
 def _claim(path: Path) -> None:
