@@ -22,6 +22,7 @@ from core.judgement.gas_findings import gas_figures
 from core.judgement.leak_trend import leak_figure
 from core.judgement.levers import levers
 from core.judgement.markers.observed import Observed
+from core.judgement.now import now_figure
 from core.judgement.oxygenation_findings import oxygenation_figure
 from core.judgement.policy import Policy
 from core.judgement.response import judge_responses
@@ -124,6 +125,7 @@ def episode_figures(
         flags=flags,
         due=due,
         concern=concern(ctx, flags, due),
+        now=now_figure(seen),
         levers=levers(ctx),
         expected_co2=expected_co2(ctx),
         oxygenation=oxygenation_figure(ctx, walls),

@@ -21,7 +21,8 @@ Wording = Callable[[Message], str]
 _INSTANTS = frozenset(
     {"at", "as_of", "since", "ended_at", "last_change_at", "break_since", "anchor_at", "first_at", "window_from",
      "window_to", "baseline_at", "headline_gas_at", "superseded_at", "span_from", "seen_at", "settled_at",
-     "due_from", "due_until", "done_at", "observed_at", "latest_at", "over_since", "adjusted_at"}
+     "due_from", "due_until", "done_at", "observed_at", "latest_at", "over_since", "adjusted_at",
+     "off_mask_since", "last_logged_at", "headline_at"}
 )  # fmt: skip
 _MICROSECONDS = 10**14
 """No count and no sequence is this large; an instant since 1973 is."""
@@ -38,6 +39,7 @@ def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
         "policy": figures.policy_hash,
         "profile": {k: form.fact(k, v) for k, v in figures.profile.items()},
         "support": form.plain(figures.support),
+        "now": form.plain(figures.now),
         "responses": [form.plain(r) for r in figures.responses],
         "gases": [form.gas(g, figures.profile.get("age")) for g in figures.gases],
         "ratios": {

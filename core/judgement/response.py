@@ -132,6 +132,7 @@ class _Judge:
             oxygen_arm_active=gas is not None and arms.hypoxaemia(gas, self.ctx.policy),
             headline=said.headline, headline_gas_at=said.gas_at, state=said.state, why=said.why, gases=judged,
             superseded_at=until,
+            gain_lost=any(j.at == said.gas_at and j.since_start.gain_lost for j in judged if j.attributable),
         )  # fmt: skip
 
     def _gases(self, index: int, base: Baseline, until: Instant | None) -> tuple[JudgedGas, ...]:

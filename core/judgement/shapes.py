@@ -176,6 +176,8 @@ class ResponseFigure:
     at_minutes: Mapping[str, CourseValue] = field(default_factory=dict)
     superseded_at: Instant | None = None
     """The next anchor's first step, where there is one."""
+    gain_lost: bool = False
+    """The headline's gas fell back from the best gas since the start, beyond noise: never "better" alone."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -323,6 +325,31 @@ class Concern:
 
 
 @dataclass(frozen=True, slots=True)
+class NowFigure:
+    """How the patient stands, in one place, so that no view can make its own and hide a relapse."""
+
+    state: str | None = None
+    """Of the newest arterial or capillary gas with a pH: "severe", "acidotic" or "resolved"."""
+    ever_acidotic: bool = False
+    """Any arterial or capillary gas of the record was; else "resolved" would tell of what never was."""
+    oxygen_failure: bool = False
+    """The newest arterial P/F on support is at or below 300 and the newest gas is not acutely hypercapnic."""
+    pf_mmHg: float | None = None
+    """The newest arterial P/F on support."""
+    headline: str | None = None
+    """Of the newest gas that gives one; None without any response."""
+    headline_at: Instant | None = None
+    """The gas it rests on; None while it waits for one."""
+    gain_lost: bool = False
+    since_start: str | None = None
+    """The newest judging gas against the baseline of the start; None where it cannot be compared."""
+    since_start_gain_lost: bool = False
+    off_mask_since: Instant | None = None
+    last_logged_at: Instant | None = None
+    """The newest sample or entry about the patient; facts of the profile and words on flags do not count."""
+
+
+@dataclass(frozen=True, slots=True)
 class EpisodeFigures:
     """Everything computed for one episode as of one moment."""
 
@@ -347,5 +374,6 @@ class EpisodeFigures:
     oxygenation: OxygenationFigure = field(default_factory=OxygenationFigure)
     ventilation: VentilationFigure = field(default_factory=VentilationFigure)
     concern: Concern = field(default_factory=lambda: Concern(5))
+    now: NowFigure = field(default_factory=NowFigure)
     warnings: tuple[Message, ...] = ()
     policy_hash: str = ""

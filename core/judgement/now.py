@@ -1,0 +1,81 @@
+"""How the patient stands now: state, headline, relapse, oxygen, off the mask, and how old the newest entry is."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+
+from core.judgement import arms
+from core.judgement.context import Context
+from core.judgement.markers.observed import Observed
+from core.judgement.shapes import GasFigure, JudgedGas, NowFigure, ResponseFigure
+from core.record.channels import CHANNELS, Group
+from core.record.instant import Instant
+
+
+def now_figure(seen: Observed) -> NowFigure:
+    """How the patient stands as of the moment. P/F in mmHg."""
+    ctx, gases = seen.ctx, seen.gases
+    with_pf = newest_pf(seen)
+    told = headline_response(ctx.responses)
+    judging = newest_judging(seen)
+    since = judging.since_start if judging is not None else None
+    off = ctx.support.break_at(ctx.as_of) if _running(ctx) else None
+    return NowFigure(
+        state=next((g.state for g in reversed(gases) if g.ph is not None), None),
+        ever_acidotic=any(g.state in ("severe", "acidotic") for g in gases),
+        oxygen_failure=oxygen_failure(seen),
+        pf_mmHg=with_pf.pf_mmHg if with_pf is not None else None,
+        headline=told.headline if told is not None else None,
+        headline_at=told.headline_gas_at if told is not None else None,
+        gain_lost=told is not None and told.gain_lost,
+        since_start=since.verdict if since is not None else None,
+        since_start_gain_lost=since is not None and since.gain_lost,
+        off_mask_since=off.start if off is not None else None,
+        last_logged_at=max(_logged(ctx), default=None),
+    )
+
+
+def headline_response(responses: Iterable[ResponseFigure]) -> ResponseFigure | None:
+    """The response whose headline is the newest: by its gas, then by its anchor; else the last, which waits."""
+    responses = tuple(responses)
+    told = [r for r in responses if r.headline_gas_at is not None]
+    if told:
+        return max(told, key=lambda r: (r.headline_gas_at or 0, r.anchor_at))
+    return responses[-1] if responses else None
+
+
+def newest_judging(seen: Observed) -> JudgedGas | None:
+    """The newest arterial or capillary gas on support, as the anchor it counts for lists it, early or not."""
+    for gas in reversed(seen.on_support_gases):
+        if gas.at in seen.attributed:
+            return seen.attributed[gas.at][-1].judged
+    return None
+
+
+def oxygen_failure(seen: Observed) -> bool:
+    """Hypoxaemic failure: newest arterial P/F on support at or below 300, newest gas not acutely hypercapnic."""
+    with_pf = newest_pf(seen)
+    if with_pf is None or not arms.hypoxaemia(with_pf, seen.policy):
+        return False
+    newest = next((g for g in reversed(seen.gases) if g.ph is not None), None)
+    return newest is None or not arms.acute_hypercapnia(newest, seen.policy)
+
+
+def newest_pf(seen: Observed) -> GasFigure | None:
+    """The newest gas on support with a P/F."""
+    return next((g for g in reversed(seen.on_support_gases) if g.pf_mmHg is not None), None)
+
+
+def _running(ctx: Context) -> bool:
+    end = ctx.support.end
+    return end is None or end > ctx.as_of
+
+
+def _logged(ctx: Context) -> Iterator[Instant]:
+    """The newest moment of every channel but those of the profile; those of the gases are among them."""
+    for key, series in ctx.episode.series.items():
+        if len(series) and CHANNELS[key].group is not Group.PROFILE:
+            yield int(series.t[-1])
+    for key, words in ctx.episode.words.items():
+        if len(words) and CHANNELS[key].group is not Group.PROFILE:
+            yield int(words.t[-1])
