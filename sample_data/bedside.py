@@ -73,9 +73,7 @@ def _plain(act: Act, name: str, value: Setting) -> tuple[str, str, str]:
     return name, f"{value:g}", SETTING_UNITS.get(name, "")
 
 
-def _gas(
-    case: Case, true: Trajectory, at: int, wanted: dict[str, Setting], dice: Dice
-) -> list[tuple[str, str, str]]:
+def _gas(case: Case, true: Trajectory, at: int, wanted: dict[str, Setting], dice: Dice) -> list[tuple[str, str, str]]:
     paco2_true, pao2_true = float(true.paco2[at]), float(true.pao2[at])
     # PaCO2 wanders and takes pH with it; a little of pH is the analyser's own.
     drift = dice.about(0, PACO2_CV, -0.09, 0.09)
@@ -113,18 +111,10 @@ def _vitals(case: Case, true: Trajectory, at: int, dice: Dice) -> list[tuple[str
     rate = max(6, round(float(true.rate[at]) + dice.about(0, 1.3, -3, 3)))
     stress = _stress(true)[at]
     sbp = p.sbp + 14 * (float(stress) - 1.0) + dice.about(0, 5, -12, 12)
-    breathless = 10.0 * float(
-        np.clip(0.05 + 0.45 * true.unmet[at] + 0.024 * (true.rate[at] - 15.0), 0.0, 1.0)
-    )
+    breathless = 10.0 * float(np.clip(0.05 + 0.45 * true.unmet[at] + 0.024 * (true.rate[at] - 15.0), 0.0, 1.0))
     temp = p.temp + dice.about(0, 0.12, -0.3, 0.3)
     worst = (
-        "marked"
-        if breathless > 6.5
-        else "moderate"
-        if breathless > 4.2
-        else "mild"
-        if breathless > 2.2
-        else "none"
+        "marked" if breathless > 6.5 else "moderate" if breathless > 4.2 else "mild" if breathless > 2.2 else "none"
     )
     acvpu = "alert" if gcs >= 15 else "confusion" if gcs >= 13 else "voice" if gcs >= 10 else "pain"
     return [
@@ -137,12 +127,7 @@ def _vitals(case: Case, true: Trajectory, at: int, dice: Dice) -> list[tuple[str
 
 def _stress(true: Trajectory) -> Values:
     """1 as the patient came, less as breathing gets easier."""
-    raw = (
-        0.6 * true.unmet
-        + 0.025 * true.rate
-        + 0.15 * true.illness
-        + 3.0 * np.maximum(0.92 - true.saturation, 0.0)
-    )
+    raw = 0.6 * true.unmet + 0.025 * true.rate + 0.15 * true.illness + 3.0 * np.maximum(0.92 - true.saturation, 0.0)
     return np.asarray((raw + true.fatigue) / float(raw[5]))
 
 

@@ -79,9 +79,7 @@ def breathe(p: Patient[Values], f: Fitted, s: State, now: Inputs, wobble: Values
     together = np.maximum(s.effort * own_share * (1.0 - closed) + support, 0.5)
     tidal = tidal_volume(compliance, flowing_pressure(together, whole.trapped, got.epap), whole.gain)
     reached = (1.0 - f.wasted_share) * (1.0 - ILL_DEAD_SPACE * (s.illness - 1.0))
-    wasted = 1.0 - np.maximum(
-        reached - OXYGEN_UNMATCHES * np.maximum(s.saturation - 0.92, 0.0) * p.matched, 0.1
-    )
+    wasted = 1.0 - np.maximum(reached - OXYGEN_UNMATCHES * np.maximum(s.saturation - 0.92, 0.0) * p.matched, 0.1)
     fixed = p.fixed_dead_l + MASK_DEAD_L * now.on
     alveolar = alveolar_ventilation(rate, useful_tidal(tidal, p.tidal_ml / 1000.0), fixed, wasted)
     triggered = triggered_percent(s.own_rate, now.rate_set, got.missed)
@@ -106,6 +104,4 @@ def seek(p: Patient[Values], f: Fitted, s: State, now: Inputs, b: Breath) -> Non
     distress = distress_of(s.unmet, f.illness_drive * s.illness, s.lack, s.fatigue)
     ceiling = np.minimum(p.rr + QUICKENS_BY * np.where(p.reserve > 1.0, 3.0, 1.0), HIGHEST_RATE)
     aim_rate = np.clip(RESTING_RATE + f.rate_per_distress * distress, LOWEST_RATE, ceiling)
-    s.own_rate = s.own_rate + (aim_rate * (1.0 - SLEEPY_RATE * s.asleep) - s.own_rate) * (
-        STEP_MIN / RATE_LAG_MIN
-    )
+    s.own_rate = s.own_rate + (aim_rate * (1.0 - SLEEPY_RATE * s.asleep) - s.own_rate) * (STEP_MIN / RATE_LAG_MIN)

@@ -69,9 +69,7 @@ class Patient(Generic[N]):
 
 def together(patients: Sequence[Patient[float]]) -> Patient[Values]:
     """Many patients as one of arrays, so that a cohort is simulated in one sweep."""
-    return Patient(
-        **{f.name: np.array([getattr(p, f.name) for p in patients], np.float64) for f in fields(Patient)}
-    )
+    return Patient(**{f.name: np.array([getattr(p, f.name) for p in patients], np.float64) for f in fields(Patient)})
 
 
 @dataclass(frozen=True, slots=True)

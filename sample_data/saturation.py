@@ -48,7 +48,5 @@ def pressure_of_content(amount: Values, ph: Values) -> Values:
     shift = 10.0 ** (BOHR * (ph - 7.4))
     at_standard = np.interp(amount, _CONTENTS, _PRESSURES)
     for _ in range(3):
-        at_standard = np.interp(
-            amount + DISSOLVED * (at_standard - at_standard / shift), _CONTENTS, _PRESSURES
-        )
+        at_standard = np.interp(amount + DISSOLVED * (at_standard - at_standard / shift), _CONTENTS, _PRESSURES)
     return np.asarray(at_standard / shift)

@@ -125,9 +125,7 @@ def obesity_hypoventilation(seed: int, last: int) -> Case:
         recruitable=0.35, tires=0.02, tolerance=d.about(46, 3, 40, 54), temp=d.about(36.8, 0.3, 36.2, 37.5),
         hr=d.about(96, 7, 80, 112), course_h=16.0,
     )  # fmt: skip
-    s = opened(
-        last, NURSE, before={"fio2": 0.35}, start=bilevel(12, 5, 0.29, ti=1.3), fit_leak=d.between(8, 16)
-    )
+    s = opened(last, NURSE, before={"fio2": 0.35}, start=bilevel(12, 5, 0.29, ti=1.3), fit_leak=d.between(8, 16))
     s.hidden(0, severity_end=0.8)
     s.gas(d.minute(66, 5), NURSE)
     s.settings(d.minute(82, 4), THERAPIST, ipap=16, epap=7)
@@ -196,9 +194,7 @@ def kpa_ward(seed: int, last: int) -> Case:
     start = bilevel(15, 5, 0.28)
     del start["fio2"]
     start["o2_flow"] = 2.0
-    s = opened(
-        last, NURSE, before={"o2_flow": 2.0}, start=start, fit_leak=d.between(9, 14), pressure_unit="kPa"
-    )
+    s = opened(last, NURSE, before={"o2_flow": 2.0}, start=start, fit_leak=d.between(9, 14), pressure_unit="kPa")
     s.hidden(0, severity_end=0.4)
     s.settings(d.minute(14, 3), THERAPIST, ipap=18)
     s.settings(d.minute(33, 3), THERAPIST, ipap=20)

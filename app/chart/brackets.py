@@ -73,9 +73,7 @@ class BracketStrip:
     def _draw(self, painter: QPainter) -> None:
         frame, left = self.row.frame(), self.row.view.pos().x()
         for bracket, line in zip(self.brackets, self.rows, strict=True):
-            x0, xa, xb = (
-                float(frame.x(self.row.seconds(t))) for t in (bracket.anchor, bracket.start, bracket.end)
-            )
+            x0, xa, xb = (float(frame.x(self.row.seconds(t))) for t in (bracket.anchor, bracket.start, bracket.end))
             if xb >= 0 and x0 <= frame.width:
                 top = self.layer.boundingRect().top() + line * self._line()
                 self._draw_one(painter, bracket, left + x0, left + xa, left + xb, top)

@@ -9,9 +9,7 @@ from PySide6.QtGui import QColor
 from app.chart.shapes import MICROSECONDS, Drawn, Instants, Look, Reading, Trace, Values
 from core.figures.envelope import Envelope, EnvelopeSeries
 
-_NOTHING = Envelope(
-    np.empty(0, np.int64), np.empty(0), np.empty(0, np.bool_), np.empty(0, np.bool_), False
-)
+_NOTHING = Envelope(np.empty(0, np.int64), np.empty(0), np.empty(0, np.bool_), np.empty(0, np.bool_), False)
 
 
 class EnvelopeCurve(pg.PlotCurveItem):  # type: ignore[misc]  # pyqtgraph has no types
@@ -40,7 +38,10 @@ class EnvelopeCurve(pg.PlotCurveItem):  # type: ignore[misc]  # pyqtgraph has no
         return QRectF() if view is None else view.viewRect()
 
     def dataBounds(
-        self, ax: int, frac: float = 1.0, orthoRange: object = None  # noqa: ARG002
+        self,
+        ax: int,
+        frac: float = 1.0,
+        orthoRange: object = None,  # noqa: ARG002
     ) -> tuple[None, None]:
         return None, None  # ranges are ours; nothing asks the data for them
 
@@ -66,10 +67,7 @@ class DrawnTrace:
         self.t, self.v = t[finite], v[finite]
         looks = np.zeros(len(v), np.uint8) if trace.looks is None else np.asarray(trace.looks, np.uint8)
         self.looks: NDArray[np.uint8] = looks[finite]
-        self.curves = [
-            EnvelopeCurve(series, origin, colour, gain, offset)
-            for series, colour in self._series(t, v)
-        ]
+        self.curves = [EnvelopeCurve(series, origin, colour, gain, offset) for series, colour in self._series(t, v)]
 
     @property
     def spotted(self) -> bool:

@@ -30,8 +30,14 @@ class Placed:
 
 
 def placed_words(
-    places: Sequence[tuple[Tick, float]], metrics: QFontMetricsF, left: float, right: float, *,
-    lines: int, gap: float, least: float,
+    places: Sequence[tuple[Tick, float]],
+    metrics: QFontMetricsF,
+    left: float,
+    right: float,
+    *,
+    lines: int,
+    gap: float,
+    least: float,
 ) -> tuple[Placed, ...]:
     """Words of the ticks inside (left, right), none over another. Of the widths a word may have, the widest that
     lets most events speak; what is cut ends in an ellipsis."""
@@ -57,7 +63,12 @@ def _grown(p: Placed, all_placed: Sequence[Placed], metrics: QFontMetricsF, righ
 
 
 def _with_cap(
-    seen: Sequence[tuple[Tick, float]], metrics: QFontMetricsF, right: float, cap: float, lines: int, gap: float,
+    seen: Sequence[tuple[Tick, float]],
+    metrics: QFontMetricsF,
+    right: float,
+    cap: float,
+    lines: int,
+    gap: float,
     least: float,
 ) -> tuple[Placed, ...]:
     ends = [float("-inf")] * lines

@@ -154,8 +154,15 @@ class WardLanes(QAbstractScrollArea):
             self._paint(painter, g, lane_painter, placed, 0, g.head + g.top(len(self.spec.lanes)), plain=True)
 
     def _paint(
-        self, painter: QPainter, g: LaneGeometry, lane_painter: LanePainter, placed: list[list[Placed]],
-        scroll: int, height: float, *, plain: bool = False,
+        self,
+        painter: QPainter,
+        g: LaneGeometry,
+        lane_painter: LanePainter,
+        placed: list[list[Placed]],
+        scroll: int,
+        height: float,
+        *,
+        plain: bool = False,
     ) -> None:
         assert self.spec is not None
         for n, lane in enumerate(self.spec.lanes):

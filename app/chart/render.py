@@ -19,7 +19,6 @@ if TYPE_CHECKING:
     from app.chart.stack import PanelStack
 
 
-
 class Painted(Protocol):
     """Something that paints itself at any size, without being a chart of this package."""
 

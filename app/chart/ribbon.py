@@ -219,7 +219,11 @@ class RibbonRow(PanelRow):
 
 
 def draw_ticks(
-    painter: QPainter, theme: Theme, area: QRectF, ticks: tuple[Tick, ...], column: Callable[[int], float],
+    painter: QPainter,
+    theme: Theme,
+    area: QRectF,
+    ticks: tuple[Tick, ...],
+    column: Callable[[int], float],
     lines: int = 1,
 ) -> None:
     """Small ticks in an area with their words at the right, on the first of some lines that is free there."""

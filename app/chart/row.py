@@ -100,8 +100,13 @@ class Layer(QGraphicsItem):
     """Paints by a bound method over a rectangle that is asked for anew when sizes change."""
 
     def __init__(
-        self, parent: QGraphicsItem, z: float, area: Callable[[], QRectF], draw: Callable[[QPainter], None],
-        *, clipped: bool = False,
+        self,
+        parent: QGraphicsItem,
+        z: float,
+        area: Callable[[], QRectF],
+        draw: Callable[[QPainter], None],
+        *,
+        clipped: bool = False,
     ) -> None:
         super().__init__(parent)
         self._area, self._draw = area, draw
@@ -119,7 +124,10 @@ class Layer(QGraphicsItem):
         return self._rect
 
     def paint(
-        self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None  # noqa: ARG002
+        self,
+        painter: QPainter,
+        option: QStyleOptionGraphicsItem,
+        widget: QWidget | None = None,  # noqa: ARG002
     ) -> None:
         self._draw(painter)
 
@@ -145,7 +153,10 @@ class CrossLine(QGraphicsItem):
         return QRectF(0, 0, 1, self._height)
 
     def paint(
-        self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None  # noqa: ARG002
+        self,
+        painter: QPainter,
+        option: QStyleOptionGraphicsItem,
+        widget: QWidget | None = None,  # noqa: ARG002
     ) -> None:
         painter.fillRect(self.boundingRect(), self._colour)
 

@@ -118,9 +118,7 @@ class TimeAxisRow(ClockRow):
             plates.append(self._plate(painter, self.crossed, word, c.ink, c.raised, height))
         return [plate for plate in plates if not plate.isEmpty()]
 
-    def _plate(
-        self, painter: QPainter, seconds: float, word: str, fill: str, ink: str, height: float
-    ) -> QRectF:
+    def _plate(self, painter: QPainter, seconds: float, word: str, fill: str, ink: str, height: float) -> QRectF:
         frame, theme, left = self.frame(), self.theme, self.view.pos().x()
         x = float(frame.x(seconds))
         if not -1 <= x <= frame.width + 1:

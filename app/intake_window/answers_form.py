@@ -103,9 +103,7 @@ class AnswersForm(QWidget):
         ]
         _fill(self.repeated, twice, use.repeated)
         zones = [(z, z) for z in sorted(available_timezones())]
-        _fill(
-            self.zone, [(self.tr("each time has its offset") if has_offsets else "?", ""), *zones], use.zone
-        )
+        _fill(self.zone, [(self.tr("each time has its offset") if has_offsets else "?", ""), *zones], use.zone)
         of = [("?", ""), *((e, e) for e in episodes)]
         of += [(self.tr("column {name}").format(name=name), _COLUMN + name) for name in header]
         _fill(self.episode, of, _COLUMN + mapping.episode_column if mapping.episode_column else episode)

@@ -158,9 +158,7 @@ class ColumnTable(QTableWidget):
 
     def box_of(self, column: str, *, unit: bool = False) -> QComboBox:
         """The choice of a column's channel, or of its unit."""
-        row = next(
-            r for r in range(self.rowCount()) if (i := self.item(r, 0)) is not None and i.text() == column
-        )
+        row = next(r for r in range(self.rowCount()) if (i := self.item(r, 0)) is not None and i.text() == column)
         return (self._units if unit else self._channels)[row]
 
 

@@ -57,9 +57,7 @@ class MappingDialog(QDialog):
         self.preview = PreviewTable(theme, reader)
         self.name = QLineEdit()
         self.buttons = QDialogButtonBox()
-        self.go = self.buttons.addButton(
-            self.tr("Read the whole file"), QDialogButtonBox.ButtonRole.AcceptRole
-        )
+        self.go = self.buttons.addButton(self.tr("Read the whole file"), QDialogButtonBox.ButtonRole.AcceptRole)
         self.buttons.addButton(self.tr("Leave"), QDialogButtonBox.ButtonRole.RejectRole)
         self._lay_out()
         self.go.setEnabled(False)
@@ -136,9 +134,7 @@ class MappingDialog(QDialog):
     # looking
 
     def _ask(self, sheet: str = "") -> None:
-        self.asked.setText(
-            self.tr("Looking at {name}. Nothing is recorded yet.").format(name=self._path.name)
-        )
+        self.asked.setText(self.tr("Looking at {name}. Nothing is recorded yet.").format(name=self._path.name))
         request = LookRequest(self._path, self._model.session.zone, sheet)
         self._model.ask(operations.look, request, done=self._show, failed=self._failed)
 
@@ -246,9 +242,7 @@ class MappingDialog(QDialog):
             more = self.tr(" ({count} more to answer)").format(count=len(asked) - 1) if len(asked) > 1 else ""
             self.asked.setText(sentence(asked[0], self._reader) + more)
         else:
-            self.asked.setText(
-                self.tr("All is answered. The whole file is read next; nothing is recorded yet.")
-            )
+            self.asked.setText(self.tr("All is answered. The whole file is read next; nothing is recorded yet."))
         answers = Answers(self.answers.episode_key, self.answers.shift.value())
         self.preview.show_rows(preview(self.looked.table, self.mapping, answers))
 

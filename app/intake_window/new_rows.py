@@ -22,9 +22,7 @@ def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[
     told = replace(reader, near=None)  # a file is of any day
     for draft in intake.entries:
         e = draft.entry
-        what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(
-            e.action, words["new"]
-        )
+        what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(e.action, words["new"])
         yield "", f"{what}, {_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
     spans: dict[tuple[str, str], tuple[int, int, int]] = {}
     for c in intake.chunks:

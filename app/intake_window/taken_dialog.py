@@ -36,9 +36,7 @@ _KEY = Qt.ItemDataRole.UserRole
 class TakenDialog(QDialog):
     """Withdrawing is asked twice: the first press says what would go, the second does it."""
 
-    def __init__(
-        self, model: SessionModel, reader: Reader, theme: Theme, parent: QWidget | None = None
-    ) -> None:
+    def __init__(self, model: SessionModel, reader: Reader, theme: Theme, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._model, self._reader = model, replace(reader, near=None)  # files of any day
         self.sources: tuple[TakenSource, ...] = ()
@@ -54,9 +52,7 @@ class TakenDialog(QDialog):
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
         for column in range(5):
-            self.table.horizontalHeader().setSectionResizeMode(
-                column, QHeaderView.ResizeMode.ResizeToContents
-            )
+            self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
         self.table.horizontalHeader().setSectionResizeMode(5, QHeaderView.ResizeMode.Stretch)
         self.said = QLabel(self.tr("Choose a file to see what its withdrawal would take back."))
         self.said.setWordWrap(True)

@@ -4,9 +4,7 @@ from typing import Final
 
 _SIDE = "baseline=the baseline gas;before=the baseline gas;gas=this gas;after=this gas;else=a gas"
 _WHO = "baseline=The baseline gas;gas=This gas;else=A gas"
-_PRESSURES = (
-    "[[IPAP {ipap_before:trim} to {ipap_after:trim}, ]][[EPAP {epap_before:trim} to {epap_after:trim}, ]]"
-)
+_PRESSURES = "[[IPAP {ipap_before:trim} to {ipap_after:trim}, ]][[EPAP {epap_before:trim} to {epap_after:trim}, ]]"
 
 TEMPLATES: Final[dict[str, str]] = {
     "effect.epap_lowers_support":

@@ -240,9 +240,7 @@ def _fold(cells: _Cells, v: Values) -> _Cells:
     )
 
 
-def _earliest(
-    indices: Indices, values: Values, extreme: np.ufunc, starts: Indices, sizes: Indices
-) -> Indices:
+def _earliest(indices: Indices, values: Values, extreme: np.ufunc, starts: Indices, sizes: Indices) -> Indices:
     best = extreme.reduceat(values, starts)
     hits = np.flatnonzero(values == np.repeat(best, sizes))
     return indices[hits[np.searchsorted(hits, starts)]]

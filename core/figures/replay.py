@@ -121,7 +121,7 @@ def _step(ledger: _Ledger, policy: Policy, at: Instant, found: dict[str, Replaye
 
 
 def _note(found: dict[str, ReplayedFlag], entry: Entry, by_id: dict[str, FlagFigure]) -> None:
-    flag = next(f for f in by_id.values() if f.marker == entry.channel and f"\"{f.flag_id}\"" in entry.raw)
+    flag = next(f for f in by_id.values() if f.marker == entry.channel and f'"{f.flag_id}"' in entry.raw)
     known = found.get(flag.flag_id)
     if entry.words == RAISED:
         found[flag.flag_id] = (

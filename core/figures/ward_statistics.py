@@ -168,9 +168,7 @@ class WardStatistics:
         )  # fmt: skip
 
 
-def ward_statistics(
-    episodes: Iterable[Episode], start: Instant, end: Instant, policy: Policy
-) -> WardStatistics:
+def ward_statistics(episodes: Iterable[Episode], start: Instant, end: Instant, policy: Policy) -> WardStatistics:
     """The figures of all episodes that had begun by the span's end and whose support had not ended before it.
 
     Raises:

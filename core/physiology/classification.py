@@ -89,9 +89,7 @@ def classify_codes(ph: ArrayLike, paco2: ArrayLike) -> Classes:
     >>> classify_codes([7.25, 7.37], [60.0, 57.0]).main.tolist()
     [2, 4]
     """
-    ph_array, paco2_array = np.broadcast_arrays(
-        np.asarray(ph, dtype=np.float64), np.asarray(paco2, dtype=np.float64)
-    )
+    ph_array, paco2_array = np.broadcast_arrays(np.asarray(ph, dtype=np.float64), np.asarray(paco2, dtype=np.float64))
     hco3: Values = np.asarray(acid_base.bicarbonate(ph_array, paco2_array))
     main = _main(ph_array, paco2_array, hco3)
     return Classes(main, _second(main, paco2_array, hco3))

@@ -84,9 +84,7 @@ def _explanations(ph: float, paco2: float, hco3: float, tolerance: float) -> tup
     return tuple(found)
 
 
-def _swapped(
-    ph: float, paco2: float, hco3: float, agrees: Callable[[float, float, float], bool]
-) -> list[Message]:
+def _swapped(ph: float, paco2: float, hco3: float, agrees: Callable[[float, float, float], bool]) -> list[Message]:
     """Two neighbouring digits typed the wrong way round: 42 for 24, 7.52 for 7.25."""
     found = []
     for name, shown in (("ph", f"{ph:.2f}"), ("paco2", f"{paco2:.4g}"), ("hco3", f"{hco3:.4g}")):
@@ -97,9 +95,7 @@ def _swapped(
             other = float(shown[:i] + b + a + shown[i + 2 :])
             gas = {"ph": ph, "paco2": paco2, "hco3": hco3} | {name: other}
             if agrees(gas["ph"], gas["paco2"], gas["hco3"]):
-                found.append(
-                    Message("consistency.digits_swapped", {"channel": name, "typed": shown, "other": other})
-                )
+                found.append(Message("consistency.digits_swapped", {"channel": name, "typed": shown, "other": other}))
     return found
 
 

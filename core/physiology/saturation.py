@@ -94,9 +94,7 @@ _KELMAN = (-8532.2289, 2121.4010, -67.073989, 935960.87, -31346.258, 2396.1674, 
 
 
 @formula(_SATURATION, pao2=_KELMAN_PO2)
-def kelman_saturation(
-    pao2: N, ph: N | float = 7.40, paco2: N | float = NORMAL_PACO2, temp: N | float = 37.0
-) -> N:
+def kelman_saturation(pao2: N, ph: N | float = 7.40, paco2: N | float = NORMAL_PACO2, temp: N | float = 37.0) -> N:
     """Saturation, %, Kelman 1966 (J Appl Physiol 21:1375); PO2 at least 10 mmHg.
 
     x = P x 10^(0.024 (37 - T) + 0.40 (pH - 7.40) + 0.06 (log10 40 - log10 PCO2)) (exponents from memory);

@@ -23,9 +23,7 @@ BASE_PBW: Final = MappingProxyType({"male": 50.0, "female": 45.5})
 """kg at 152.4 cm (Devine; ARDSNet)."""
 
 _PBW = Domain("kg", 20.0, 160.0, "undefined.result_outside", "undefined.result_outside")
-_ALVEOLAR = Domain(
-    "L/min", 0.01, 80.0, "undefined.tidal_volume_within_dead_space", "undefined.result_outside"
-)
+_ALVEOLAR = Domain("L/min", 0.01, 80.0, "undefined.tidal_volume_within_dead_space", "undefined.result_outside")
 
 CAVEATS: Final[Mapping[str, tuple[Message, ...]]] = MappingProxyType(
     {

@@ -70,9 +70,7 @@ class LogLine:
 
     def entries(self, episode: str, *, by: str, zone: str, confirmed: bool) -> tuple[NewEntry, ...]:
         """The entries to append. Unconfirmed soft limits are marked doubtful."""
-        return tuple(
-            from_reading(episode, self.at, r, by=by, zone=zone, confirmed=confirmed) for r in self.readings
-        )
+        return tuple(from_reading(episode, self.at, r, by=by, zone=zone, confirmed=confirmed) for r in self.readings)
 
 
 def read_line(
@@ -100,9 +98,7 @@ def read_line(
         reader.notes.append(Message("line.long_ago", {"hours": (now - at) / HOUR}))
     after = _after(before, readings)
     if after.is_bilevel and after.ipap <= after.epap:
-        raise refuse(
-            "settings.ipap_not_above_epap", ipap=after.ipap, epap=after.epap, accepted="IPAP above EPAP"
-        )
+        raise refuse("settings.ipap_not_above_epap", ipap=after.ipap, epap=after.epap, accepted="IPAP above EPAP")
     return LogLine(at, typed, tuple(readings), before.pressure_support, after.pressure_support,
                    tuple(reader.notes))  # fmt: skip
 

@@ -63,9 +63,7 @@ class SupportTime:
         high = min(end, self.end) if self.end is not None else end
         if high <= low:
             return 0.0
-        off = sum(
-            max(0, min(b.end if b.end is not None else high, high) - max(b.start, low)) for b in self.breaks
-        )
+        off = sum(max(0, min(b.end if b.end is not None else high, high) - max(b.start, low)) for b in self.breaks)
         return (high - low - off) / HOUR
 
     def hours_last_day(self, as_of: Instant) -> float:

@@ -47,9 +47,7 @@ def code_system() -> dict[str, Any]:
     """Our own codes as a FHIR R4 CodeSystem: the keys of channels, for what has no sure LOINC code and beside it."""
     concepts = [{"code": c.key, "display": c.name, "definition": _definition(c)} for c in CHANNELS.values()]
     choices = sorted({choice for c in CHANNELS.values() for choice in c.choices} - CHANNELS.keys())
-    concepts += [
-        {"code": choice, "display": choice, "definition": "a choice of a channel"} for choice in choices
-    ]
+    concepts += [{"code": choice, "display": choice, "definition": "a choice of a channel"} for choice in choices]
     return {
         "resourceType": "CodeSystem", "url": LOCAL_SYSTEM, "name": "LuffmarkChannels", "status": "active",
         "content": "complete", "caseSensitive": True, "copyright": LOINC_NOTICE,

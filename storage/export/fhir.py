@@ -129,9 +129,7 @@ def _value(known: Channel, e: Entry) -> Json:
     if known.kind is Kind.INSTANT:
         return {"valueDateTime": iso(int(e.number or 0))}
     if known.kind is Kind.CHOICE:
-        return {
-            "valueCodeableConcept": {"coding": [{"system": LOCAL_SYSTEM, "code": e.words}], "text": e.words}
-        }
+        return {"valueCodeableConcept": {"coding": [{"system": LOCAL_SYSTEM, "code": e.words}], "text": e.words}}
     return {"valueString": e.words} if e.words else {"valueBoolean": True}
 
 

@@ -17,9 +17,7 @@ _CHUNKS_AT_ONCE = 20_000
 _LEFT_OUT_NAMED = 1_000
 
 
-def take_in(
-    store: Store, intake: Intake, *, by: str, now: Instant, without_refused: bool = False
-) -> Receipt | None:
+def take_in(store: Store, intake: Intake, *, by: str, now: Instant, without_refused: bool = False) -> Receipt | None:
     """Add what a file brings, in one transaction. None where the store already has all of it.
 
     With `without_refused` a person has decided to leave the refused rows out; the source then says which.
@@ -45,9 +43,7 @@ def take_in(
     honoured = store.imported and store.head() == 0
     drafts, times = zip(*_batches(intake, by, now, honoured), strict=True)
     receipts = store.append_drafts(drafts, times)
-    return replace(
-        receipts[-1], first_seq=receipts[0].first_seq, ids=tuple(i for r in receipts for i in r.ids)
-    )
+    return replace(receipts[-1], first_seq=receipts[0].first_seq, ids=tuple(i for r in receipts for i in r.ids))
 
 
 def _batches(intake: Intake, by: str, now: Instant, honoured: bool) -> Iterator[tuple[DraftBatch, Instant]]:
@@ -59,9 +55,7 @@ def _batches(intake: Intake, by: str, now: Instant, honoured: bool) -> Iterator[
         yield DraftBatch(by, "intake", chunks=some, source=intake.source), now
 
 
-def _by_recording(
-    entries: tuple[DraftEntry, ...], now: Instant
-) -> Iterator[tuple[tuple[DraftEntry, ...], Instant]]:
+def _by_recording(entries: tuple[DraftEntry, ...], now: Instant) -> Iterator[tuple[tuple[DraftEntry, ...], Instant]]:
     """Entries by the time at which they were recorded; those without one are recorded now."""
     groups: dict[Instant, list[DraftEntry]] = {}
     for draft in entries:

@@ -124,9 +124,7 @@ class DeviceRows:
                 mixed = (mixed ^ word) * _MIX
                 mixed ^= mixed >> np.uint64(29)
             mixed = (mixed ^ fields.length[rows, column].astype(np.uint64)) * _MIX
-        _kinds, first, inverse, counts = np.unique(
-            mixed, return_index=True, return_inverse=True, return_counts=True
-        )
+        _kinds, first, inverse, counts = np.unique(mixed, return_index=True, return_inverse=True, return_counts=True)
         if first.size > _MANY and first.size * 8 > rows.size:
             return  # nearly every row a group of its own: reading them one by one is quicker
         same = np.ones(rows.size, np.bool_)
@@ -149,9 +147,7 @@ class DeviceRows:
         rows, t, v = rows[read], t[read], v[read]
         if rows.size:
             lines = (first_line + rows).astype(np.int32)
-            self._spool.add(
-                texts["episode"], channel, texts["unit"], texts["leak_definition"], t, v, lines, decimals
-            )
+            self._spool.add(texts["episode"], channel, texts["unit"], texts["leak_definition"], t, v, lines, decimals)
         return rows
 
     def _group_text(self, fields: _Fields, row: int, name: str) -> str:
@@ -210,9 +206,7 @@ def _is_tidy(texts: dict[str, str]) -> bool:
 _UNREAD = (nan, -1)
 
 
-def _remember(
-    known: dict[int, tuple[float, int]], word: int, channel: Channel, unit: str
-) -> tuple[float, int]:
+def _remember(known: dict[int, tuple[float, int]], word: int, channel: Channel, unit: str) -> tuple[float, int]:
     """Read one distinct value as any other value is read; decimals of -1 where it cannot be."""
     text = word.to_bytes(8, "little").rstrip(b"\x00").decode("utf-8", "replace")
     if len(known) > 100_000:

@@ -42,9 +42,7 @@ def read_fhir(
         made.findings.refuse(error.line, "", error.value, error.message)
         return made.finished(SourceFacts("fhir", file.name), BY, "status", whole=False)
     holdings = Holdings.of(resources)
-    rows = ObservationRows(
-        now, CodeBook(said.codes), made.patients, holdings, made.findings, made.aside, made.spool
-    )
+    rows = ObservationRows(now, CodeBook(said.codes), made.patients, holdings, made.findings, made.aside, made.spool)
     for i, found in enumerate(holdings.observations):
         if cancelled is not None and cancelled():
             raise refuse("intake.cancelled", path=file.name)
@@ -53,8 +51,6 @@ def read_fhir(
         made.take(rows.read(found), "specimen")
     for kind, count in Counter(text(f.resource, "resourceType") for f in holdings.others).items():
         if kind not in ("Patient", "Specimen"):
-            made.aside.put(
-                0, "resourceType", kind, Message("fhir.other_resource", {"kind": kind, "count": count})
-            )
+            made.aside.put(0, "resourceType", kind, Message("fhir.other_resource", {"kind": kind, "count": count}))
     facts = {"format": "FHIR R4", "observations": str(len(holdings.observations))}
     return made.finished(SourceFacts("fhir", file.name, sha, size, facts), BY, "status")

@@ -77,11 +77,7 @@ class Holdings:
         given = child(subject, "identifier")
         found = [identifier_text(text(given, "system"), text(given, "value"))] if text(given, "value") else []
         reference = text(subject, "reference")
-        kind = (
-            reference.rsplit("/", 2)[-2]
-            if "/" in reference and ":" not in reference.split("/")[-2]
-            else "Patient"
-        )
+        kind = reference.rsplit("/", 2)[-2] if "/" in reference and ":" not in reference.split("/")[-2] else "Patient"
         patient = self.followed(reference, observation) if reference else None
         if patient is not None:
             kind = text(patient, "resourceType")

@@ -105,9 +105,7 @@ class ObservationRows:
                 self._aside.put(found.number, f"{where} code".strip(), _name(part), why)
 
     def _meaning(self, part: Json, resource: Json) -> tuple[Meaning | None, Message]:
-        codings: list[Coding] = [
-            (text(c, "system"), text(c, "code")) for c in objects(child(part, "code"), "coding")
-        ]
+        codings: list[Coding] = [(text(c, "system"), text(c, "code")) for c in objects(child(part, "code"), "coding")]
         code = codings[0][1] if codings else ""
         why = Message("code.not_ours", {"code": code[:60], "name": _name(part)[:80]})
         own = self._book.channel(codings)
@@ -121,9 +119,7 @@ class ObservationRows:
     def _about(self, found: Found) -> _About | None:
         resource = found.resource
         if "modifierExtension" in resource or "implicitRules" in resource:
-            raise refuse(
-                "fhir.modifier", accepted="an observation without modifierExtension or implicitRules"
-            )
+            raise refuse("fhir.modifier", accepted="an observation without modifierExtension or implicitRules")
         status = text(resource, "status")
         if status == "registered":
             self._aside.put(found.number, "status", status, Message("result.not_yet", {"channel": ""}))
@@ -209,9 +205,7 @@ class ObservationRows:
         if quantity:
             if text(quantity, "comparator"):
                 shown = text(quantity, "comparator") + text(quantity, "value")
-                raise refuse(
-                    "value.comparator", channel=known.key, value=shown[:40], accepted="one exact number"
-                )
+                raise refuse("value.comparator", channel=known.key, value=shown[:40], accepted="one exact number")
             is_ucum = text(quantity, "system") == UCUM
             unit = text(quantity, "code") if is_ucum else ""
             return coded_reading(known, _plain(text(quantity, "value")), unit, is_ucum=is_ucum)
@@ -241,9 +235,7 @@ def _components(resource: Json) -> Iterator[tuple[str, Json]]:
 
 def _saturation(resource: Json, meaning: Meaning) -> Meaning | None:
     """2708-6 is a pulse oximeter's among vital signs and an analyser's among laboratory results."""
-    kinds = {
-        text(c, "code") for category in objects(resource, "category") for c in objects(category, "coding")
-    }
+    kinds = {text(c, "code") for category in objects(resource, "category") for c in objects(category, "coding")}
     if "vital-signs" in kinds:
         return Meaning("spo2")
     return meaning if "laboratory" in kinds else None

@@ -29,9 +29,7 @@ def sampled_points(sampled: Json, channel: Channel, start: Instant) -> tuple[str
         RecordError: `sampled.*`, `unit.*`, `value.*`.
     """
     if not is_device_channel(channel.key):
-        raise refuse(
-            "entry.not_a_device_channel", channel=channel.key, accepted="a numeric device or vital channel"
-        )
+        raise refuse("entry.not_a_device_channel", channel=channel.key, accepted="a numeric device or vital channel")
     origin = child(sampled, "origin")
     plain = text(sampled, "factor") in ("", "1", "1.0") and text(sampled, "dimensions") == "1"
     step = _microseconds(text(sampled, "period"))
@@ -40,9 +38,7 @@ def sampled_points(sampled: Json, channel: Channel, start: Instant) -> tuple[str
     is_ucum = text(origin, "system") == UCUM
     code = text(origin, "code") if is_ucum else ""
     if not code and len(channel.units) > 1:
-        raise refuse(
-            "unit.missing", channel=channel.key, value="", accepted=", ".join(u.name for u in channel.units)
-        )
+        raise refuse("unit.missing", channel=channel.key, value="", accepted=", ".join(u.name for u in channel.units))
     unit = unit_name(channel, code, is_ucum=is_ucum) if code else channel.unit
     read = [_point(channel, word, unit) for word in text(sampled, "data").split()]
     t = start + step * np.arange(len(read), dtype=np.int64)

@@ -25,9 +25,7 @@ def observed_at(resource: Json, now: Instant) -> tuple[Instant | None, tuple[Mes
         if text(resource, name):
             return moment(text(resource, name), now), ()
     if "effectiveTiming" in resource:
-        raise refuse(
-            "time.not_a_moment", value="effectiveTiming", accepted="effectiveDateTime, Instant or Period"
-        )
+        raise refuse("time.not_a_moment", value="effectiveTiming", accepted="effectiveDateTime, Instant or Period")
     period = child(resource, "effectivePeriod")
     start, end = text(period, "start"), text(period, "end")
     if not start and not end:

@@ -108,9 +108,7 @@ class MessageRows:
             self._aside.put(o.line, "OBX-11", status, Message("result.not_yet", {"channel": meaning.channel}))
             return None
         if status not in _STATUS:
-            raise refuse(
-                "result.status_unknown", value=status[:20], accepted=" ".join(k for k in _STATUS if k)
-            )
+            raise refuse("result.status_unknown", value=status[:20], accepted=" ".join(k for k in _STATUS if k))
         stated = _STATUS[status]
         at = self._moment(o)
         episode = self._patients.episode(message.identifiers(), o.line)
@@ -187,9 +185,7 @@ class _Message:
             self._segments = [_Fields(segment) for segment in parsed]
             self._kinds = [fields[0] for fields in self._segments]
         except Exception as error:  # the parser raises whatever its slicing meets
-            raise refuse(
-                "hl7.unreadable", detail=type(error).__name__, accepted="an HL7 v2 message"
-            ) from None
+            raise refuse("hl7.unreadable", detail=type(error).__name__, accepted="an HL7 v2 message") from None
         marks = raw.text[3:8].ljust(5)
         self.component, self.repetition, self._escape = marks[1], marks[2], marks[3]
         self._subcomponent, self._mark = marks[4], marks[0]
@@ -235,9 +231,7 @@ class _Message:
         for number, segment in enumerate(self._segments):
             kind = self._kinds[number]
             if kind == "OBR":
-                order = _Order(
-                    _get(segment, 3).split(self.component)[0], _get(segment, 7), self._site(segment, 15)
-                )
+                order = _Order(_get(segment, 3).split(self.component)[0], _get(segment, 7), self._site(segment, 15))
                 last = None
             elif kind == "SPM":
                 order.site = self._site(segment, 4) or order.site
@@ -276,16 +270,12 @@ class _Message:
             comparator, separator = _get(parts, 0).strip(), _get(parts, 2).strip()
             shown = "".join(p.strip() for p in parts)
             if separator:
-                raise refuse(
-                    "value.comparator", channel=channel, value=shown[:40], accepted="one exact number"
-                )
+                raise refuse("value.comparator", channel=channel, value=shown[:40], accepted="one exact number")
             return (comparator if comparator != "=" else "") + _get(parts, 1).strip()
         if kind in ("CE", "CWE", "CNE"):
             return self.plain(_get(parts, 1) or parts[0]).strip()
         if kind in ("ED", "RP"):
-            raise refuse(
-                "value.not_a_number", channel=channel, value=kind, accepted="NM, SN, ST, TX, CE or CWE"
-            )
+            raise refuse("value.not_a_number", channel=channel, value=kind, accepted="NM, SN, ST, TX, CE or CWE")
         return self.plain(first).strip()
 
     def plain(self, text: str) -> str:

@@ -98,9 +98,7 @@ class MessageReader:
                     raise unreadable(line + 1, "", "line.too_long", accepted=f"{MAX_SEGMENT} bytes")
                 for part in parts:
                     line += 1
-                    plain = (
-                        part.strip(b"\x0b\x1c \t\xef\xbb\xbf") if line == 1 else part.strip(b"\x0b\x1c \t")
-                    )
+                    plain = part.strip(b"\x0b\x1c \t\xef\xbb\xbf") if line == 1 else part.strip(b"\x0b\x1c \t")
                     if plain:
                         yield line, plain
                 if not fresh:

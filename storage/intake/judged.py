@@ -34,9 +34,7 @@ def judged_intake(
     )  # fmt: skip
 
 
-def new_chunks(
-    spool: SampleSpool, source_id: str, existing: Store | None
-) -> tuple[tuple[DraftChunk, ...], int]:
+def new_chunks(spool: SampleSpool, source_id: str, existing: Store | None) -> tuple[tuple[DraftChunk, ...], int]:
     """The hours of samples that the store does not have just so, and how many samples it has."""
     fresh: list[DraftChunk] = []
     known = 0

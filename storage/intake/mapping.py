@@ -106,9 +106,7 @@ def open_questions(mapping: Mapping, *, episode_given: bool, has_offsets: bool) 
     if not mapping.time.date:
         asked.append(Message("mapping.no_time", {"accepted": "the column with date and time"}))
     elif mapping.time.order not in ORDERS:
-        asked.append(
-            Message("mapping.time_order", {"column": mapping.time.date, "accepted": " | ".join(ORDERS)})
-        )
+        asked.append(Message("mapping.time_order", {"column": mapping.time.date, "accepted": " | ".join(ORDERS)}))
     needs_zone = not has_offsets and not mapping.time.order.startswith("epoch")
     if mapping.time.date and needs_zone and not mapping.time.zone:
         asked.append(Message("mapping.time_zone", {"accepted": "a time zone, e.g. Europe/Oslo"}))
@@ -141,9 +139,7 @@ def _about_values(mapping: Mapping) -> list[Message]:
         seen.setdefault(key, column)
         names = [u.name for u in known.units]
         if known.kind is Kind.NUMBER and len(names) > 1 and unit not in names:
-            asked.append(
-                Message("mapping.unit", {"column": column, "channel": key, "accepted": " | ".join(names)})
-            )
+            asked.append(Message("mapping.unit", {"column": column, "channel": key, "accepted": " | ".join(names)}))
     numeric = any(CHANNELS[k].kind is Kind.NUMBER for k in channels_of(mapping) if k in CHANNELS)
     if numeric and mapping.decimal not in DECIMALS:
         asked.append(Message("mapping.decimal", {"accepted": "point | comma"}))
@@ -168,9 +164,7 @@ def from_text(text: str) -> Mapping:
     try:
         found = msgspec.json.decode(text.encode(), type=Mapping)
     except (msgspec.DecodeError, msgspec.ValidationError) as error:
-        raise refuse(
-            "mapping.unreadable", detail=str(error)[:200], accepted="a mapping of this program"
-        ) from None
+        raise refuse("mapping.unreadable", detail=str(error)[:200], accepted="a mapping of this program") from None
     if found.format > FORMAT:
         raise refuse("mapping.newer", format=found.format, accepted=FORMAT)
     return found

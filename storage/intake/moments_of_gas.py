@@ -33,16 +33,12 @@ class SampleSites:
             raise refuse("gas.two_sites", channel=entry.channel, first=held, second=site,
                          accepted="one site per moment")  # fmt: skip
         if site and not held:
-            new = NewEntry(
-                entry.episode, "site", entry.at, words=site, raw=site, zone=entry.zone, by=entry.by
-            )
+            new = NewEntry(entry.episode, "site", entry.at, words=site, raw=site, zone=entry.zone, by=entry.by)
             base = identity("site", entry.episode, str(entry.at), site)
             row = Result(line, base, ("site",), new, Standing.GIVEN, "", issued)
         self._sites[key] = (site or held, row)
 
     def rows(self, versions: ResultVersions) -> list[EntryRow]:
         """The entries of the sites that codes and specimens name, where no entry of the file states one."""
-        named = [
-            row for key, (_site, row) in self._sites.items() if row is not None and key not in self._stated
-        ]
+        named = [row for key, (_site, row) in self._sites.items() if row is not None and key not in self._stated]
         return [row for row in map(versions.add, named) if row is not None]

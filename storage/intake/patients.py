@@ -75,9 +75,7 @@ class Patients:
         if held:
             raise refuse("patient.several_episodes", value=identifiers[0], episodes=", ".join(held),
                          accepted="one of them, named at intake")  # fmt: skip
-        raise refuse(
-            "patient.unknown", value=identifiers[0], accepted="the episode it belongs to, named once"
-        )
+        raise refuse("patient.unknown", value=identifiers[0], accepted="the episode it belongs to, named once")
 
     def _for_anyone(self, identifiers: tuple[str, ...], episode: str, line: int) -> str:
         """The episode named for the whole file: it stands for one patient, never for two."""

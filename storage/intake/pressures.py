@@ -63,9 +63,7 @@ def _newest_pressure(now: Sequence[Entry], first_new: int) -> Entry | None:
     return new[-1] if new else None
 
 
-def _blamed(
-    at: Instant, now: Sequence[Entry], force: dict[str, Entry], first_new: int
-) -> list[Contradiction]:
+def _blamed(at: Instant, now: Sequence[Entry], force: dict[str, Entry], first_new: int) -> list[Contradiction]:
     ipap, epap = (force[k] for k in _PRESSURES)
     here = _newest_pressure(now, first_new)
     late = here or next((e for e in (*now, epap, ipap) if e.seq >= first_new), None)

@@ -101,9 +101,7 @@ def _time(table: Table, zone: str) -> tuple[TimeUse, bool]:
     if dated:
         values = table.column(dated[0])
         if all(_EPOCH_TEXT.fullmatch(v.partition(".")[0]) for v in values):
-            return TimeUse(
-                dated[0], order="epoch_s" if len(values[0].partition(".")[0]) == 10 else "epoch_ms"
-            ), True
+            return TimeUse(dated[0], order="epoch_s" if len(values[0].partition(".")[0]) == 10 else "epoch_ms"), True
         orders = fitting_orders(values)
         order = orders[0] if len(orders) == 1 else ""
         offsets = bool(orders) and all_have_offsets(values, orders[0])

@@ -44,9 +44,7 @@ class ResultsIntake:
     def finished(self, source: SourceFacts, by: str, column: str, *, whole: bool = True) -> Intake:
         """The intake; `column` is where a result's status stands."""
         for gone in self._versions.nothing_to_withdraw:
-            message = Message(
-                "result.nothing_to_withdraw", {"channel": gone.entry.channel, "status": gone.why}
-            )
+            message = Message("result.nothing_to_withdraw", {"channel": gone.entry.channel, "status": gone.why})
             self.aside.put(gone.line, column, gone.why, message)
         made = [*self._sites.rows(self._versions), *self.patients.confirmations(by), *self._made]
         intake = judged_intake(

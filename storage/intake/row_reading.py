@@ -72,19 +72,13 @@ class RowReader:
         recorded = one.column("recorded_at", lambda: self._recorded(row["recorded_at"]))
         if known is None or action is None:
             return None
-        if (
-            row["by"] == _BY_DEVICE
-            and is_device_channel(known.key)
-            and action not in (Action.MASK, Action.SHIFT)
-        ):
+        if row["by"] == _BY_DEVICE and is_device_channel(known.key) and action not in (Action.MASK, Action.SHIFT):
             one.column("action", lambda: _plain_device_row(row, action))
             value = one.column("value", lambda: _device_value(known, row["value"], row["unit"]))
             if one.bad or at is None or episode is None or value is None:
                 return None
             remark = self._remark(row, episode, at)
-            return SampleRow(
-                line, episode, known, row["unit"], definition or "", at, value[0], value[1], remark
-            )
+            return SampleRow(line, episode, known, row["unit"], definition or "", at, value[0], value[1], remark)
         column = "replaces" if action in REPLACING_ACTIONS and not row["replaces"] else "value"
         made = one.column(column, lambda: _entry(known, action, row, episode or "?", at or 0))
         if one.bad or made is None:
@@ -134,9 +128,7 @@ class _Row:
 
 def _key(text: str) -> str:
     if not text or len(text) > _MAX_KEY:
-        raise refuse(
-            "entry.no_episode", value=text[:80], accepted=f"an episode's key, 1 to {_MAX_KEY} letters"
-        )
+        raise refuse("entry.no_episode", value=text[:80], accepted=f"an episode's key, 1 to {_MAX_KEY} letters")
     return text
 
 

@@ -140,9 +140,7 @@ class SampleSpool:
         for hour in sorted(series.packed):
             yield from self._one_hour(key, series.packed[hour], series.decimals)
 
-    def _one_hour(
-        self, key: tuple[str, str], pieces: list[tuple[Block, bytes]], decimals: int
-    ) -> Iterator[Block]:
+    def _one_hour(self, key: tuple[str, str], pieces: list[tuple[Block, bytes]], decimals: int) -> Iterator[Block]:
         if len(pieces) == 1:
             yield pieces[0][0]
             return

@@ -58,9 +58,7 @@ def guarded_copy(file: BinaryIO) -> tuple[io.BytesIO, Scan]:
                 if part.is_dir() or not _WANTED.fullmatch(part.filename):
                     continue
                 if part.flag_bits & 1:
-                    raise unreadable(
-                        0, part.filename[:80], "sheet.encrypted", accepted="a file without a password"
-                    )
+                    raise unreadable(0, part.filename[:80], "sheet.encrypted", accepted="a file without a password")
                 data = _unpacked(source, part, left)
                 left -= len(data)
                 if part.filename.endswith((".xml", ".rels")):
@@ -69,9 +67,7 @@ def guarded_copy(file: BinaryIO) -> tuple[io.BytesIO, Scan]:
     except UnreadableFileError:
         raise
     except Exception as error:  # the archive module raises whatever the slicing of a damaged archive meets
-        raise unreadable(
-            0, "", "sheet.damaged", detail=type(error).__name__, accepted="XLSX or ODS"
-        ) from None
+        raise unreadable(0, "", "sheet.damaged", detail=type(error).__name__, accepted="XLSX or ODS") from None
     copy.seek(0)
     return copy, scan
 
@@ -140,9 +136,7 @@ class _Watch:
             self._check(self._ods_cells)
 
     def doctype(self, *_: object) -> None:
-        raise unreadable(
-            0, self._name[:80], "sheet.document_type", accepted="XML without document types or entities"
-        )
+        raise unreadable(0, self._name[:80], "sheet.document_type", accepted="XML without document types or entities")
 
     def cells(self) -> int:
         """The cells of the rectangle that holds every cell of the part."""
@@ -153,19 +147,12 @@ class _Watch:
     def _note_cell(self, reference: str) -> None:
         found = _CELL.fullmatch(reference)
         if found is None:
-            raise unreadable(
-                0, reference[:20], "sheet.damaged", detail="cell address", accepted="XLSX or ODS"
-            )
+            raise unreadable(0, reference[:20], "sheet.damaged", detail="cell address", accepted="XLSX or ODS")
         column = 0
         for letter in found[1]:
             column = column * 26 + ord(letter) - 64
         row = int(found[2])
-        if (
-            row < self._rows[0]
-            or row > self._rows[1]
-            or column < self._columns[0]
-            or column > self._columns[1]
-        ):
+        if row < self._rows[0] or row > self._rows[1] or column < self._columns[0] or column > self._columns[1]:
             self._rows = [min(self._rows[0], row), max(self._rows[1], row)]
             self._columns = [min(self._columns[0], column), max(self._columns[1], column)]
             self._check(self.cells())
@@ -177,9 +164,7 @@ class _Watch:
             self._row_cells += repeat
         elif repeat < 1024:  # an empty tail repeated to the sheet's edge fills nothing
             self._row_cells += repeat
-        wide, high = (
-            _number(attributes.get(f"table:number-{way}-spanned", "1")) for way in ("columns", "rows")
-        )
+        wide, high = (_number(attributes.get(f"table:number-{way}-spanned", "1")) for way in ("columns", "rows"))
         if wide > 1 or high > 1:
             self._scan.merged.update((self._table, self._row + i) for i in range(min(high, _MOST_MERGED)))
         self._check(self._ods_cells + self._row_cells)

@@ -82,9 +82,7 @@ def open_table(path: Path | str, *, sheet: str = "", encoding: str = "", header_
     rows: list[list[str]] = []
     lines: list[int] = []
     for block in TextTable(file, dialect):
-        rows += (
-            block.rows if block.columns is None else [list(row) for row in zip(*block.columns, strict=True)]
-        )
+        rows += block.rows if block.columns is None else [list(row) for row in zip(*block.columns, strict=True)]
         lines += block.lines
         if len(rows) > FIRST_ROWS:
             break
@@ -117,16 +115,12 @@ def _begun(
     file: Path, dialect: Dialect, rows: list[list[str]], lines: list[int], book: Workbook | None = None
 ) -> Table:
     if len(rows) < 2:
-        raise unreadable(
-            dialect.header_line, file.name, "table.no_rows", accepted="a header and at least one row"
-        )
+        raise unreadable(dialect.header_line, file.name, "table.no_rows", accepted="a header and at least one row")
     header = column_names(_without_tail(rows[0]))
     if len(header) > MOST_COLUMNS:
         raise unreadable(dialect.header_line, str(len(header)), "table.too_wide", accepted=MOST_COLUMNS)
     width = len(header)
-    first = tuple(
-        (line, tuple(fitted(cells, width))) for line, cells in zip(lines[1:], rows[1:], strict=False)
-    )
+    first = tuple((line, tuple(fitted(cells, width))) for line, cells in zip(lines[1:], rows[1:], strict=False))
     return Table(file, dialect, header, first, book.sheets if book else (), book)
 
 

@@ -14,9 +14,7 @@ from storage.intake.device_rows import read_device_value
 from storage.intake.mapping import TimeUse
 from storage.intake.table_times import read_time
 
-ABSENT = frozenset(
-    {"", "-", "--", "---", "n/a", "na", "nan", "null", "none", ".", "?", "\N{EN DASH}", "\N{EM DASH}"}
-)
+ABSENT = frozenset({"", "-", "--", "---", "n/a", "na", "nan", "null", "none", ".", "?", "\N{EN DASH}", "\N{EM DASH}"})
 """What tables write where they have no value (common practice, no source)."""
 _FORMULA = re.compile(r"[=@]|[+\-][^0-9.,\s].*[(!|]|\t|\r")
 

@@ -44,9 +44,7 @@ def preview(table: Table, mapping: Mapping, answers: Answers, rows: int = 12) ->
     return tuple(_row(line, cells, place, mapping, answers) for line, cells in table.first[:rows])
 
 
-def _row(
-    line: int, cells: tuple[str, ...], place: dict[str, int], mapping: Mapping, answers: Answers
-) -> PreviewRow:
+def _row(line: int, cells: tuple[str, ...], place: dict[str, int], mapping: Mapping, answers: Answers) -> PreviewRow:
     def cell(column: str) -> str:
         return cells[place[column]] if column in place and place[column] < len(cells) else ""
 
@@ -66,9 +64,7 @@ def _row(
         parts = [(long.value, key, unit)]
     else:
         parts = [(c.column, c.channel, c.unit) for c in mapping.used]
-    read = tuple(
-        _cell(column, key, cell(column), unit, mapping) for column, key, unit in parts if key in CHANNELS
-    )
+    read = tuple(_cell(column, key, cell(column), unit, mapping) for column, key, unit in parts if key in CHANNELS)
     return PreviewRow(line, at, shown, why, episode, read)
 
 

@@ -157,9 +157,7 @@ class TableRows:
         for (word, unit), places in groups.items():
             key = long.names.get(word)
             if key is None:
-                error = refuse(
-                    "mapping.word_unknown", value=word[:80], accepted="a word that the mapping names"
-                )
+                error = refuse("mapping.word_unknown", value=word[:80], accepted="a word that the mapping names")
                 for i in places:
                     self._findings.refuse(int(rows.lines[i]), long.channel, word, error.message)
             elif key:

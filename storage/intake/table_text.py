@@ -94,9 +94,7 @@ class TextTable:
         if not lines[-1]:
             lines.pop()
         skip = max(0, self._dialect.header_line - 1 - before)
-        reader = csv.reader(
-            [line + "\n" for line in lines[skip:]], delimiter=self._dialect.delimiter, strict=True
-        )
+        reader = csv.reader([line + "\n" for line in lines[skip:]], delimiter=self._dialect.delimiter, strict=True)
         rows: list[list[str]] = []
         numbers: list[int] = []
         at = start = before + skip
@@ -144,9 +142,7 @@ class TextTable:
                 if not data:
                     return
                 if len(carried) > 2 * MAX_LINE:
-                    raise unreadable(
-                        lines + 1, carried[:60], "line.too_long", accepted=f"{MAX_LINE} characters"
-                    )
+                    raise unreadable(lines + 1, carried[:60], "line.too_long", accepted=f"{MAX_LINE} characters")
 
     def _wrong_encoding(self, error: UnicodeDecodeError, line: int) -> Exception:
         seen = error.object
@@ -186,7 +182,5 @@ def _check_lengths(text: str, before: int) -> None:
         end = text.rfind("\n", start, start + MAX_LINE + 1)
         if end < 0:
             line = before + text.count("\n", 0, start) + 1
-            raise unreadable(
-                line, text[start : start + 60], "line.too_long", accepted=f"{MAX_LINE} characters"
-            )
+            raise unreadable(line, text[start : start + 60], "line.too_long", accepted=f"{MAX_LINE} characters")
         start = end + 1

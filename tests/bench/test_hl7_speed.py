@@ -47,7 +47,5 @@ def test_intake_against_the_parser_alone(tmp_path: Path) -> None:
         ours.append(time.perf_counter() - begun)
     assert len([d for d in intake.entries if d.entry.channel == "ph"]) == MESSAGES
     ratio = median(ours) / median(alone)
-    print(
-        f"\n{MESSAGES} messages: parser {median(alone):.2f} s, intake {median(ours):.2f} s, ratio {ratio:.2f}"
-    )
+    print(f"\n{MESSAGES} messages: parser {median(alone):.2f} s, intake {median(ours):.2f} s, ratio {ratio:.2f}")
     assert ratio <= LIMIT

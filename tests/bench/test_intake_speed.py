@@ -48,12 +48,7 @@ def write_log(path: Path, samples: int) -> Path:
     rng = np.random.default_rng(1)
     minutes = samples // len(CHANNELS) + 1
     columns = [
-        [
-            f"{x:g}"
-            for x in np.clip(
-                np.round(rng.normal(mean, mean / 20, minutes), d), 0, 99 if c == "spo2" else 3000
-            )
-        ]
+        [f"{x:g}" for x in np.clip(np.round(rng.normal(mean, mean / 20, minutes), d), 0, 99 if c == "spo2" else 3000)]
         for c, _u, mean, d in CHANNELS
     ]
     left = samples
@@ -83,9 +78,7 @@ def test_a_million_device_samples(tmp_path: Path, capsys: pytest.CaptureFixture[
             assert intake.sample_count == 1_000_000
     ratio = median(ours) / median(pandas)
     with capsys.disabled():
-        print(
-            f"\n1,000,000 samples: pandas {median(pandas):.2f} s, taken in {median(ours):.2f} s, ratio {ratio:.2f}"
-        )
+        print(f"\n1,000,000 samples: pandas {median(pandas):.2f} s, taken in {median(ours):.2f} s, ratio {ratio:.2f}")
     assert ratio <= 4
 
 

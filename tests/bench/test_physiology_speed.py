@@ -66,9 +66,7 @@ def seconds(work: Callable[[dict[str, Values]], None], g: dict[str, Values]) -> 
 
 
 @pytest.mark.bench
-@pytest.mark.parametrize(
-    ("ours", "bare"), [(our_acid_base, bare_acid_base), (our_oxygenation, bare_oxygenation)]
-)
+@pytest.mark.parametrize(("ours", "bare"), [(our_acid_base, bare_acid_base), (our_oxygenation, bare_oxygenation)])
 def test_formulas_cost_at_most_three_times_the_bare_expressions(
     ours: Callable[[dict[str, Values]], None], bare: Callable[[dict[str, Values]], None]
 ) -> None:

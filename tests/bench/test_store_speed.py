@@ -52,17 +52,13 @@ def test_one_entry_committed(tmp_path: Path, capsys: pytest.CaptureFixture[str])
     for opened in (bare, plain, locked):
         opened.close()
     with capsys.disabled():
-        print(
-            f"\none entry: bare {b * 1e3:.2f} ms, store +{(p - b) * 1e3:.2f}, encrypted +{(e - p) * 1e3:.2f} more"
-        )
+        print(f"\none entry: bare {b * 1e3:.2f} ms, store +{(p - b) * 1e3:.2f}, encrypted +{(e - p) * 1e3:.2f} more")
     assert p - b <= 3e-3
     assert e - p <= 1e-3
 
 
 @pytest.mark.skipif(shutil.which("strace") is None, reason="needs strace to count calls")
-def test_one_entry_costs_as_many_syncs_as_a_bare_insert(
-    tmp_path: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
+def test_one_entry_costs_as_many_syncs_as_a_bare_insert(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     Store.create(tmp_path / "ward.luff", now=NOW).close()
     bare_table(tmp_path / "bare.db").close()
 
@@ -108,15 +104,11 @@ def test_opening_a_store_of_20000_closed_episodes(tmp_path: Path, capsys: pytest
 
     few, many = interleaved(30, opened(small), opened(large))
     with capsys.disabled():
-        print(
-            f"\nopening: 20 episodes {few * 1e3:.1f} ms, 20,000 {many * 1e3:.1f} ms, ratio {many / few:.2f}"
-        )
+        print(f"\nopening: 20 episodes {few * 1e3:.1f} ms, 20,000 {many * 1e3:.1f} ms, ratio {many / few:.2f}")
     assert many <= 1.3 * few
 
 
-def test_logging_costs_the_same_beside_10000_episodes(
-    tmp_path: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
+def test_logging_costs_the_same_beside_10000_episodes(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     stores = [Store.open(filled(tmp_path / f"{n}.luff", n)) for n in (10, 10_000)]
 
     def log(store: Store) -> Callable[[int], object]:
@@ -131,9 +123,7 @@ def test_logging_costs_the_same_beside_10000_episodes(
     for store in stores:
         store.close()
     with capsys.disabled():
-        print(
-            f"\nlog and read: 10 episodes {few * 1e3:.2f} ms, 10,000 {many * 1e3:.2f}, ratio {many / few:.2f}"
-        )
+        print(f"\nlog and read: 10 episodes {few * 1e3:.2f} ms, 10,000 {many * 1e3:.2f}, ratio {many / few:.2f}")
     assert many <= 1.3 * few
 
 

@@ -144,9 +144,7 @@ def test_updated_bounds() -> None:
     assert set(found.missing) == {"hr", "ph", "gcs", "pf", "rr", "sofa", *FACTS}
 
 
-@pytest.mark.parametrize(
-    ("points", "band"), [(7, 0), (7.5, 1), (10.5, 1), (11, 2), (14, 2), (14.5, 3), (-4, 0)]
-)
+@pytest.mark.parametrize(("points", "band"), [(7, 0), (7.5, 1), (10.5, 1), (11, 2), (14, 2), (14.5, 3), (-4, 0)])
 def test_updated_bands(points: float, band: int) -> None:
     """Confirmed in the abstract: <= 7, 7.5-10.5, 11-14, > 14."""
     assert scores.updated_band(points).values["band"] == band

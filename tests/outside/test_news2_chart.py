@@ -38,9 +38,7 @@ EDGES = {
 NORMAL = {"rr": 16, "spo2": 97, "on_oxygen": False, "sbp": 120, "hr": 70, "acvpu": "alert", "temp": 37.0}
 
 
-@pytest.mark.parametrize(
-    ("name", "value", "points"), [(n, v, p) for n, pairs in EDGES.items() for v, p in pairs]
-)
+@pytest.mark.parametrize(("name", "value", "points"), [(n, v, p) for n, pairs in EDGES.items() for v, p in pairs])
 def test_every_edge(name: str, value: object, points: int) -> None:
     found = scores.news2(**{**NORMAL, name: value})  # type: ignore[arg-type]
     assert found.points == found.parts[name].points == points

@@ -42,9 +42,7 @@ def test_alveolar_po2_in_both_forms(key: str) -> None:
 @pytest.mark.parametrize("key", having("FiO2", "Aa_simple_mmHg"))
 def test_gradient_in_both_forms(key: str) -> None:
     row = GASES[key]
-    pao2, paco2, fio2, simple, full = numbers(
-        row, "pO2_mmHg", "pCO2_mmHg", "FiO2", "Aa_simple_mmHg", "Aa_full_mmHg"
-    )
+    pao2, paco2, fio2, simple, full = numbers(row, "pO2_mmHg", "pCO2_mmHg", "FiO2", "Aa_simple_mmHg", "Aa_full_mmHg")
     assert oxygenation.aa_gradient(pao2, paco2, fio2) == pytest.approx(simple, abs=0.06)
     assert oxygenation.aa_gradient_full(pao2, paco2, fio2) == pytest.approx(full, abs=0.06)
     assert (consistency.gradient_doubt(pao2, paco2, fio2) is not None) is (key == "NEG-AIR")

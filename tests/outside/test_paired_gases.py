@@ -91,6 +91,4 @@ def test_they_can_be_plotted(intake: Intake, tmp_path: Path, qapp: QApplication)
     moments = ("--as-of", iso(START + 60 * MINUTE))
     assert main(["--store", str(path), "picture", "3", "--out", str(picture), *moments]) == 0
     image = QImage(str(picture))
-    assert (
-        len({image.pixel(x, y) for x in range(0, image.width(), 3) for y in range(0, image.height(), 3)}) > 20
-    )
+    assert len({image.pixel(x, y) for x in range(0, image.width(), 3) for y in range(0, image.height(), 3)}) > 20

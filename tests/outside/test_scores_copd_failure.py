@@ -17,9 +17,7 @@ BEST = {"ph": 7.36, "rr": 24.0, "gcs": 15.0, "apache": 15.0}
 WORST = {"ph": 7.20, "rr": 36.0, "gcs": 10.0, "apache": 31.0}
 
 
-@pytest.mark.parametrize(
-    ("name", "value", "step"), [(n, v, s) for n, pairs in STEPS.items() for v, s in pairs]
-)
+@pytest.mark.parametrize(("name", "value", "step"), [(n, v, s) for n, pairs in STEPS.items() for v, s in pairs])
 def test_every_edge_of_every_axis(name: str, value: float, step: int) -> None:
     assert copd_failure(**{**BEST, name: value}).steps[name] == step  # type: ignore[arg-type]
 

@@ -71,9 +71,7 @@ def test_factor(key: str, code: str) -> None:
         assert unit.to_canonical(typed) == pytest.approx(expected, rel=2e-5)
 
 
-@pytest.mark.parametrize(
-    "code", ["mm(Hg)", "mmhg", "KPA", "cmH2O", "psi", "MM[HG]", "ML", "mmol", "{breaths}"]
-)
+@pytest.mark.parametrize("code", ["mm(Hg)", "mmhg", "KPA", "cmH2O", "psi", "MM[HG]", "ML", "mmol", "{breaths}"])
 def test_what_is_no_code_of_a_unit_is_not_taken(code: str) -> None:
     """UCUM's case-sensitive codes count; a look-alike is no code."""
     assert unit_of_ucum(CHANNELS["paco2"], code) is None

@@ -69,9 +69,7 @@ def test_the_closed_form_solves_the_mass_balance() -> None:
     vco2, va, weight = 220.0, 4.0, 70.0
     store = co2_course.FARHI_STORE * weight
     minutes = np.linspace(0.0, 120.0, 25)
-    found = solve_ivp(
-        lambda _t, p: (vco2 - p * va / 0.863) / store, (0.0, 120.0), [80.0], t_eval=minutes, rtol=1e-9
-    )
+    found = solve_ivp(lambda _t, p: (vco2 - p * va / 0.863) / store, (0.0, 120.0), [80.0], t_eval=minutes, rtol=1e-9)
     half = co2_course.half_time_of_store(va, weight)
     closed = co2_course.paco2_after(
         np.full(25, 80.0), np.full(25, co2_course.steady_paco2(vco2, va)), minutes, np.full(25, half)

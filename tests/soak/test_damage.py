@@ -57,9 +57,7 @@ def test_mutated_stores_open_or_are_refused(tmp_path: Path, capsys: pytest.Captu
         print(f"\nmutated stores: {counts}")
 
 
-def test_mutated_backups_restore_whole_or_not_at_all(
-    tmp_path: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
+def test_mutated_backups_restore_whole_or_not_at_all(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     chance = random.Random(17)
     sound = filled(tmp_path / "a.luff", encrypted=False).read_bytes()
     with Store.open(tmp_path / "a.luff") as store:
@@ -84,9 +82,7 @@ def test_mutated_backups_restore_whole_or_not_at_all(
 
 def test_mutated_logs_are_read_or_refused(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     chance = random.Random(19)
-    header = (
-        "episode,at,channel,value,unit,by,note,id,replaces,action,zone,recorded_at,reason,leak_definition\n"
-    )
+    header = "episode,at,channel,value,unit,by,note,id,replaces,action,zone,recorded_at,reason,leak_definition\n"
     rows = [
         'E1,2026-03-28T01:00:00+00:00,note,"a, ""b""\nc",,AB,,,,,,,,\n',
         "E1,2026-03-28T01:00:00+00:00,ph,7.25,,AB,,r1,,,Europe/Oslo,2026-03-28T01:10:00Z,,\n",

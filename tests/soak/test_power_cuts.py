@@ -28,9 +28,7 @@ COMPILER = shutil.which("cc")
 
 
 @pytest.mark.parametrize("secret", [None, SECRET])
-def test_killed_at_random_moments(
-    tmp_path: Path, secret: str | None, capsys: pytest.CaptureFixture[str]
-) -> None:
+def test_killed_at_random_moments(tmp_path: Path, secret: str | None, capsys: pytest.CaptureFixture[str]) -> None:
     path, chance = tmp_path / "ward.luff", random.Random(11)
     Store.create(path, now=NOW, passphrase=secret, cost=Cost(64, 1, 1)).close()
     taken: dict[str, list[int]] = {}
@@ -50,9 +48,7 @@ def test_unsynced_writes_dropped_under_1000_commits(
     """At each of 10 cuts everything that was not synced is gone: the file, its journal, both as last synced."""
     library = tmp_path / "unsynced.so"
     source = Path(__file__).parents[1] / "support" / "unsynced.c"
-    subprocess.run(
-        [str(COMPILER), "-shared", "-fPIC", "-O2", "-o", str(library), str(source), "-ldl"], check=True
-    )
+    subprocess.run([str(COMPILER), "-shared", "-fPIC", "-O2", "-o", str(library), str(source), "-ldl"], check=True)
     live, cut = tmp_path / "live", tmp_path / "cut"
     live.mkdir()
     path = live / "ward.luff"

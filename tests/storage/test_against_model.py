@@ -55,9 +55,7 @@ def test_the_store_equals_the_model_as_known_at_every_moment(model: LedgerModel)
 
 @settings(max_examples=25, deadline=None)
 @given(histories(), st.data())
-def test_as_known_at_equals_a_store_that_never_saw_what_came_later(
-    model: LedgerModel, data: st.DataObject
-) -> None:
+def test_as_known_at_equals_a_store_that_never_saw_what_came_later(model: LedgerModel, data: st.DataObject) -> None:
     moment = data.draw(st.sampled_from([b.recorded_at for b in model.batches]))
     with (
         folder() as place,
@@ -75,9 +73,7 @@ def test_as_known_at_equals_a_store_that_never_saw_what_came_later(
             assert mine.series.keys() == other.series.keys()
             for channel in mine.series:
                 for part in ("t", "v", "spot", "doubt"):
-                    assert np.array_equal(
-                        getattr(mine.number(channel), part), getattr(other.number(channel), part)
-                    )
+                    assert np.array_equal(getattr(mine.number(channel), part), getattr(other.number(channel), part))
 
 
 @settings(max_examples=25, deadline=None)

@@ -17,9 +17,7 @@ from tests.storage.conftest import NOW, PASSPHRASE
 
 
 def log(store: Store, i: int) -> None:
-    store.append(
-        [NewEntry("E1", "rr", NOW + i, 20.0, None, "20", "/min", 0)], by="AB", operation="log", now=NOW
-    )
+    store.append([NewEntry("E1", "rr", NOW + i, 20.0, None, "20", "/min", 0)], by="AB", operation="log", now=NOW)
 
 
 def secret(store: Store) -> str | None:

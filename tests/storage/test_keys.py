@@ -68,9 +68,7 @@ def test_an_envelope_altered_with_care_is_found_once_it_opens(made: keys.NewKey)
     ("field", "value"),
     [("memory_kib", 2**31), ("passes", 10**6), ("lanes", 0), ("memory_kib", True), ("salt", "00")],
 )
-def test_costs_out_of_bounds_are_refused_before_they_are_paid(
-    made: keys.NewKey, field: str, value: object
-) -> None:
+def test_costs_out_of_bounds_are_refused_before_they_are_paid(made: keys.NewKey, field: str, value: object) -> None:
     envelope = json.loads(made.envelope)
     envelope["wraps"][0][field] = value
     envelope["checksum"] = keys._checksum(envelope)
@@ -147,9 +145,7 @@ def test_what_failed_to_open_is_told_apart(make_store: Callable[..., Store], tmp
     assert failure(PASSPHRASE) == "opened"
 
 
-def test_nothing_typed_is_readable_in_an_encrypted_store(
-    make_store: Callable[..., Store], tmp_path: Path
-) -> None:
+def test_nothing_typed_is_readable_in_an_encrypted_store(make_store: Callable[..., Store], tmp_path: Path) -> None:
     from core.record.entries import NewEntry
 
     store = make_store(encrypted=True)
@@ -181,9 +177,7 @@ def test_no_secret_stands_in_what_is_printed_of_a_store(make_store: Callable[...
 
 
 @pytest.mark.skipif(sys.platform == "win32", reason="rights of files as POSIX has them")
-def test_only_the_owner_may_read_a_store_and_its_backup(
-    make_store: Callable[..., Store], tmp_path: Path
-) -> None:
+def test_only_the_owner_may_read_a_store_and_its_backup(make_store: Callable[..., Store], tmp_path: Path) -> None:
     store = make_store(encrypted=True)
     store.put_layout("a", "b")
     store.backup(tmp_path / "copy.luff")
@@ -197,6 +191,4 @@ def test_only_the_owner_may_read_a_store_and_its_backup(
         "new.luff",
         "new.luff.key",
     )
-    assert {name: oct((tmp_path / name).stat().st_mode & 0o777) for name in names} == dict.fromkeys(
-        names, "0o600"
-    )
+    assert {name: oct((tmp_path / name).stat().st_mode & 0o777) for name in names} == dict.fromkeys(names, "0o600")

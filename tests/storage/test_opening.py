@@ -112,9 +112,7 @@ def test_a_read_only_folder(store: Store) -> None:
             Path(place).chmod(0o755)
 
 
-@pytest.mark.parametrize(
-    "name", ["ward #1 ?mode=ro&x=50%.luff", "B\u00e4nk \u2013 3.luff", "a'b;c.luff", ".luff"]
-)
+@pytest.mark.parametrize("name", ["ward #1 ?mode=ro&x=50%.luff", "B\u00e4nk \u2013 3.luff", "a'b;c.luff", ".luff"])
 def test_a_store_may_have_any_name(tmp_path: Path, name: str) -> None:
     with Store.create(tmp_path / name, now=NOW) as made:
         made.append([rr()], by="AB", operation="log", now=NOW)

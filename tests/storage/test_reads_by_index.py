@@ -41,9 +41,7 @@ def moved(store: Store) -> Store:
     """A store with entries moved between episodes, so that every path of reading is taken."""
     ids: list[str] = []
     for i in range(6):
-        ids += store.append(
-            [NewEntry(f"E{i % 2}", "rr", NOW + i, 20.0)], by="AB", operation="log", now=NOW
-        ).ids
+        ids += store.append([NewEntry(f"E{i % 2}", "rr", NOW + i, 20.0)], by="AB", operation="log", now=NOW).ids
     store.append(
         [NewEntry("E1", "rr", NOW, 20.0, action=Action.MOVE, replaces=ids[0])],
         by="AB",

@@ -33,9 +33,7 @@ def numbers(store: Store, channel: str = "rr", head: int | None = None, episode:
 
 
 def test_an_entry_comes_back_as_it_was_given(either_store: Store) -> None:
-    given = NewEntry(
-        "E1", "ph", NOW, 7.4, None, "7,40", "pH", 2, "Europe/Oslo", "AB", "second stab", "doubt.unusual"
-    )
+    given = NewEntry("E1", "ph", NOW, 7.4, None, "7,40", "pH", 2, "Europe/Oslo", "AB", "second stab", "doubt.unusual")
     receipt = log(either_store, given)
     (entry,) = either_store.entries("E1")
     assert (entry.seq, entry.id, entry.recorded_at) == (1, receipt.ids[0], NOW)

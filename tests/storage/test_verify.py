@@ -48,9 +48,7 @@ def tamper(path: Path, *statements: str) -> None:
 
 def findings(path: Path) -> list[tuple[str, object]]:
     with Store.open(path) as store:
-        return [
-            (m.key, m.values.get("what", m.values.get("batch", m.values.get("seq")))) for m in store.verify()
-        ]
+        return [(m.key, m.values.get("what", m.values.get("batch", m.values.get("seq")))) for m in store.verify()]
 
 
 def test_a_sound_store_has_no_findings(filled: Path) -> None:
@@ -108,9 +106,7 @@ def test_a_damaged_layout_or_draft_is_left_out_and_named(filled: Path) -> None:
         store.put_layout("night", "mine")
         store.put_layout("day", "mine")
         store.put_draft("strip", "ipap 1", NOW)
-    tamper(
-        filled, "UPDATE layout SET text = 'other' WHERE name = 'night'", "UPDATE draft SET text = 'ipap 2'"
-    )
+    tamper(filled, "UPDATE layout SET text = 'other' WHERE name = 'night'", "UPDATE draft SET text = 'ipap 2'")
     with Store.open(filled) as store:
         assert dict(store.layouts()) == {"day": "mine"}
         assert store.draft("strip") is None

@@ -21,9 +21,7 @@ def bare_table(path: Path) -> Any:
     """A table of its own in a file with the store's settings, and nothing else."""
     connection = raw_connection(path, None, mode="rwc")
     connection.execute("PRAGMA journal_mode = WAL")
-    connection.execute(
-        "CREATE TABLE IF NOT EXISTS t (seq INTEGER PRIMARY KEY, at BIGINT, number FLOAT, words TEXT)"
-    )
+    connection.execute("CREATE TABLE IF NOT EXISTS t (seq INTEGER PRIMARY KEY, at BIGINT, number FLOAT, words TEXT)")
     return connection
 
 

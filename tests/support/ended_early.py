@@ -34,9 +34,7 @@ def acknowledged(lines: list[str]) -> list[int]:
     return [int(line.split()[1]) for line in lines if line.endswith("\n") and not line.startswith("error")]
 
 
-def kill_while_logging(
-    path: Path, episode: str, chance: random.Random, secret: str | None = None
-) -> list[int]:
+def kill_while_logging(path: Path, episode: str, chance: random.Random, secret: str | None = None) -> list[int]:
     """Kill a child at a random moment while it logs; what it had acknowledged."""
     child = start(path, episode, 100_000, secret=secret)
     assert child.stdout is not None

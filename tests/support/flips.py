@@ -23,9 +23,7 @@ def filled(path: Path, *, encrypted: bool) -> Path:
     secret = SECRET if encrypted else None
     with Store.create(path, now=NOW, passphrase=secret, cost=Cost(64, 1, 1)) as store:
         for i in range(12):
-            new = NewEntry(
-                f"E{i % 3}", "rr", NOW + i, 20.0 + i, None, f"{20 + i}", "/min", 0, by="AB", note="n" * 40
-            )
+            new = NewEntry(f"E{i % 3}", "rr", NOW + i, 20.0 + i, None, f"{20 + i}", "/min", 0, by="AB", note="n" * 40)
             store.append([new], by="AB", operation="log", now=NOW + i)
         t = NOW + MINUTE * np.arange(180, dtype=np.int64)
         leak = DeviceSamples("E1", "leak", "dev", t, np.arange(180.0) % 31)
@@ -87,9 +85,7 @@ def mutated(sound: bytes, chance: random.Random) -> bytes:
         elif kind == 1:
             data[at : at + length] = chance.randbytes(length)
         elif kind == 2:
-            data[at : at + 2] = chance.choice(
-                [b"\x00\x00", b"\xff\xff", b"\x7f\xff", b"\x80\x00", b'"\n', b",,"]
-            )
+            data[at : at + 2] = chance.choice([b"\x00\x00", b"\xff\xff", b"\x7f\xff", b"\x80\x00", b'"\n', b",,"])
         elif kind == 3:
             data[at:at] = data[at : at + length]
         else:

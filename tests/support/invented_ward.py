@@ -56,18 +56,14 @@ class Bed:
 _seq = count(1)
 
 
-def record_of(
-    key: str, rows: Iterable[tuple[str, dict[str, str]]], samples: Iterable[DeviceSamples] = ()
-) -> Episode:
+def record_of(key: str, rows: Iterable[tuple[str, dict[str, str]]], samples: Iterable[DeviceSamples] = ()) -> Episode:
     """An episode from rows of (clock, {channel: text, with an optional unit after a space})."""
     entries: list[Entry] = []
     for clock, values in rows:
         for name, text in values.items():
             ch = channel(name)
             number, _, unit = text.partition(" ") if ch.units else (text, "", "")
-            new = from_reading(
-                key, at(clock), read_value(ch, number, unit), by="AB", zone=ZONE, confirmed=True
-            )
+            new = from_reading(key, at(clock), read_value(ch, number, unit), by="AB", zone=ZONE, confirmed=True)
             seq = next(_seq)
             entries.append(recorded(new, seq, f"e{seq}", at(clock)))
     return build_episode(key, standing(entries), samples)
@@ -190,11 +186,7 @@ def failing() -> Bed:
             headline="no clear change",
             headline_gas_at=at("23:20"),
             state="acidotic",
-            gases=(
-                JudgedGas(
-                    at("23:20"), 60, "in_window", -0.02, 3, verdict="no clear change", state="acidotic"
-                ),
-            ),
+            gases=(JudgedGas(at("23:20"), 60, "in_window", -0.02, 3, verdict="no clear change", state="acidotic"),),
         ),
         ResponseFigure(
             at("03:05"),
@@ -537,11 +529,7 @@ def leaking(n: int) -> Bed:
             headline="no clear change",
             headline_gas_at=at("00:15"),
             state="acidotic",
-            gases=(
-                JudgedGas(
-                    at("00:15"), 90, "in_window", 0.01, -1, verdict="no clear change", state="acidotic"
-                ),
-            ),
+            gases=(JudgedGas(at("00:15"), 90, "in_window", 0.01, -1, verdict="no clear change", state="acidotic"),),
         ),
     )
     flag = FlagFigure(

@@ -46,9 +46,7 @@ def new_entry(draw: st.DrawFn, known: dict[str, NewEntry]) -> NewEntry:
         target = draw(st.sampled_from(values))
         old = known[target]
         span = old.action in spans
-        action = (
-            Action.WITHDRAW if span else draw(st.sampled_from([Action.CORRECT, Action.WITHDRAW, Action.MOVE]))
-        )
+        action = Action.WITHDRAW if span else draw(st.sampled_from([Action.CORRECT, Action.WITHDRAW, Action.MOVE]))
         episode = draw(st.sampled_from(EPISODES)) if action is Action.MOVE else old.episode
         number = None if action is Action.WITHDRAW else _number(old.channel, draw(st.integers(5, 60)))
         words = "said" if old.channel == "note" and action is not Action.WITHDRAW else None
@@ -60,9 +58,7 @@ def new_entry(draw: st.DrawFn, known: dict[str, NewEntry]) -> NewEntry:
         return NewEntry(episode, "leak", at, end, action=Action.MASK, source=source)
     if kind == "shift":
         by = float(draw(st.integers(-90, 90)) * MINUTE)
-        return NewEntry(
-            episode, "leak", at, by, action=Action.SHIFT, source=draw(st.sampled_from(["", "a", "b"]))
-        )
+        return NewEntry(episode, "leak", at, by, action=Action.SHIFT, source=draw(st.sampled_from(["", "a", "b"])))
     channel = draw(st.sampled_from(CHANNELS))
     words = draw(st.sampled_from(["seen", "told"])) if channel == "note" else None
     return NewEntry(episode, channel, at, _number(channel, draw(st.integers(5, 60))), words)

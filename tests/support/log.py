@@ -51,9 +51,7 @@ def episode(log: str, key: str = "E1", samples: Iterable[DeviceSamples] = ()) ->
     return build_episode(key, standing(entries(log, key)), samples)
 
 
-def device(
-    channel: str, start: str, values: Iterable[float], every_s: int = 60, key: str = "E1"
-) -> DeviceSamples:
+def device(channel: str, start: str, values: Iterable[float], every_s: int = 60, key: str = "E1") -> DeviceSamples:
     """Device samples from a time of day on, one every `every_s` seconds."""
     v = np.array(list(values), np.float64)
     t = moment(start) + np.arange(v.size, dtype=np.int64) * every_s * 1_000_000

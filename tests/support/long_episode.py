@@ -89,7 +89,6 @@ def long_csv(hours: int = HOURS) -> str:
     lines += [f"LONG,{iso(e.at)},{e.channel},{e.raw},,AB," for e in long_entries(hours)]
     for block in long_samples(hours):
         lines += [
-            f"LONG,{iso(int(t))},{block.channel},{v:.0f},,device,"
-            for t, v in zip(block.t, block.v, strict=True)
+            f"LONG,{iso(int(t))},{block.channel},{v:.0f},,device," for t, v in zip(block.t, block.v, strict=True)
         ]
     return "\n".join(lines) + "\n"

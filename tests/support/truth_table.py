@@ -46,14 +46,10 @@ class Row:
 ROWS = {
     # acidosis
     "ph_below_severe": Row(BASE + "02:00 ph 7.24 paco2 70", ("7.24", "7.25"), ("ph 7.24", "")),
-    "venous_ph_below_severe": Row(
-        BASE + "02:00 ph 7.24 paco2 70 site venous", ("7.24", "7.25"), ("ph 7.24", "")
-    ),
+    "venous_ph_below_severe": Row(BASE + "02:00 ph 7.24 paco2 70 site venous", ("7.24", "7.25"), ("ph 7.24", "")),
     "ph_below_715": Row(BASE + "02:00 ph 7.14 paco2 80", ("7.14", "7.15"), ("ph 7.14", ""), outside=OFF),
     "ph_below_715_before_support": Row(BASE + "00:40 ph 7.14 paco2 80", ("7.14", "7.15"), ("ph 7.14", "")),
-    "ph_below_720_on_support": Row(
-        BASE + "02:00 ph 7.19 paco2 80", ("7.19", "7.20"), ("ph 7.19", ""), outside=OFF
-    ),
+    "ph_below_720_on_support": Row(BASE + "02:00 ph 7.19 paco2 80", ("7.19", "7.20"), ("ph 7.19", ""), outside=OFF),
     "ph_720_725_twice": Row(
         BASE + "02:00 ph 7.22 paco2 80\n03:00 ph 7.23 paco2 80",
         ("03:00", "02:59"),
@@ -96,8 +92,7 @@ ROWS = {
         outside=OFF,
     ),
     "oxygen_gain_lost": Row(
-        LUNG_BASE + "02:00 ph 7.42 paco2 36 pao2 100 site arterial\n"
-        "05:00 ph 7.42 paco2 36 pao2 85 site arterial",
+        LUNG_BASE + "02:00 ph 7.42 paco2 36 pao2 100 site arterial\n05:00 ph 7.42 paco2 36 pao2 85 site arterial",
         ("pao2 85", "pao2 87"),
         ("pao2 85", ""),
         outside=(MORE, ""),
@@ -109,16 +104,10 @@ ROWS = {
         outside=OFF,
         as_of="d3 00:00",
     ),
-    "acidosis_off_support": Row(
-        BASE + "02:00 mask_off\n02:20 ph 7.34 paco2 60", ("7.34", "7.35"), ("ph 7.34", "")
-    ),
+    "acidosis_off_support": Row(BASE + "02:00 mask_off\n02:20 ph 7.34 paco2 60", ("7.34", "7.35"), ("ph 7.34", "")),
     # oxygen
-    "pao2_below_60": Row(
-        BASE + "02:00 ph 7.40 pao2 59 site arterial", ("pao2 59", "pao2 60"), ("pao2 59", "")
-    ),
-    "pao2_below_45": Row(
-        BASE + "02:00 ph 7.40 pao2 44 site arterial", ("pao2 44", "pao2 45"), ("pao2 44", "")
-    ),
+    "pao2_below_60": Row(BASE + "02:00 ph 7.40 pao2 59 site arterial", ("pao2 59", "pao2 60"), ("pao2 59", "")),
+    "pao2_below_45": Row(BASE + "02:00 ph 7.40 pao2 44 site arterial", ("pao2 44", "pao2 45"), ("pao2 44", "")),
     "pao2_below_45_on_highest_oxygen": Row(
         BASE + "02:00 ph 7.40 pao2 44 site arterial gas_fio2 0.8",
         ("gas_fio2 0.8", "gas_fio2 0.79"),
@@ -171,9 +160,7 @@ ROWS = {
         outside=(BASE, LUNG + MORE),
         as_of="02:40",
     ),
-    "spo2_above_range": Row(
-        LUNG + START + SPO2.format(99), ("99 99", "98 98"), (" fio2 30", ""), as_of="02:40"
-    ),
+    "spo2_above_range": Row(LUNG + START + SPO2.format(99), ("99 99", "98 98"), (" fio2 30", ""), as_of="02:40"),
     "fio2_need_rising": Row(
         BASE + "device spo2 01:30 04:00 90 90\n03:00 fio2 40%",
         ("40%", "39%"),
@@ -274,9 +261,7 @@ ROWS = {
     "sbp_below_90": Row(BASE + "02:00 sbp 89", ("sbp 89", "sbp 90"), ("02:00 sbp 89", "")),
     "lactate_above_2": Row(BASE + "02:00 ph 7.30 lactate 2.1", ("2.1", "2.0"), ("lactate 2.1", "")),
     "lactate_above_4": Row(BASE + "02:00 ph 7.30 lactate 4.1", ("4.1", "4.0"), ("lactate 4.1", "")),
-    "lactate_rising": Row(
-        BASE + "02:00 lactate 1.8\n04:00 lactate 2.3", ("1.8", "1.9"), ("02:00 lactate 1.8", "")
-    ),
+    "lactate_rising": Row(BASE + "02:00 lactate 1.8\n04:00 lactate 2.3", ("1.8", "1.9"), ("02:00 lactate 1.8", "")),
     "arrest": Row(BASE + "02:00 arrest", ("02:00", "12:01"), ("02:00 arrest", "")),
     "spo2_fall_after_pressure": Row(
         BASE + "03:00 ipap 24\ndevice spo2 02:00 03:20 92 92\ndevice spo2 03:20 03:40 86 86",
@@ -327,9 +312,7 @@ ROWS = {
     # contraindication
     "vomiting": Row(BASE + "02:00 vomiting", ("02:00", "00:50"), ("02:00 vomiting", ""), outside=OFF),
     "agitation": Row(BASE + "02:00 agitation", ("02:00", "00:50"), ("02:00 agitation", ""), outside=OFF),
-    "undrained_pneumothorax": Row(
-        BASE + "02:00 pneumothorax yes", ("yes", "no"), ("02:00 pneumothorax yes", "")
-    ),
+    "undrained_pneumothorax": Row(BASE + "02:00 pneumothorax yes", ("yes", "no"), ("02:00 pneumothorax yes", "")),
     # timing and weaning
     "gas_overdue": Row(BASE, ("12:00", "12:00"), (START, ""), as_of="03:01"),
     "skin_check_overdue": Row(BASE, ("12:00", "12:00"), (START, ""), outside=OFF, as_of="05:01"),

@@ -25,9 +25,10 @@ def slow_envelope(t, v, gap_limit, start, end, width):
     first = max(before - 1, 0)
     stop = min(before + len(inside) + 1, len(samples))
     if stop - first <= 2 * width:
-        picked, joined = list(range(len(samples))), [
-            i + 1 < len(samples) and not samples[i + 1][2] for i in range(len(samples))
-        ]
+        picked, joined = (
+            list(range(len(samples))),
+            [i + 1 < len(samples) and not samples[i + 1][2] for i in range(len(samples))],
+        )
     else:
         picked, joined = _slow_bins(samples, bin_width(start, end, width))
     lone = [not joined[i] and (i == 0 or not joined[i - 1]) for i in range(len(picked))]
@@ -145,9 +146,7 @@ def test_bad_series_are_refused(t, v, gap, words):
         EnvelopeSeries(t, v, gap)
 
 
-@pytest.mark.parametrize(
-    ("start", "end", "width", "words"), [(5, 5, 10, "after the start"), (0, 5, 0, "0 pixels")]
-)
+@pytest.mark.parametrize(("start", "end", "width", "words"), [(5, 5, 10, "after the start"), (0, 5, 0, "0 pixels")])
 def test_bad_windows_are_refused(start, end, width, words):
     with pytest.raises(ValueError, match=words):
         EnvelopeSeries([0], [1.0]).envelope(start, end, width)

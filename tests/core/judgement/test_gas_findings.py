@@ -43,8 +43,7 @@ def test_hypercapnia_does_not_depend_on_the_unit(paco2, hypercapnic):
 
 def test_oxygen_figures_need_an_arterial_sample_and_a_known_fio2():
     arterial, capillary, on_flow = gases(
-        START
-        + "02:00 ph 7.30 paco2 60 pao2 60 site arterial\n02:10 ph 7.30 paco2 60 pao2 60 site capillary\n"
+        START + "02:00 ph 7.30 paco2 60 pao2 60 site arterial\n02:10 ph 7.30 paco2 60 pao2 60 site capillary\n"
         "03:00 o2 flow 4\n03:10 ph 7.30 paco2 60 pao2 60 site arterial"
     )
     assert arterial.pf_mmHg == pytest.approx(150.0)
@@ -83,9 +82,7 @@ def test_standard_bicarbonate_is_not_checked():
 
 
 def test_an_impossible_gradient_says_the_fio2_cannot_be_right():
-    (figure,) = gases(
-        "01:00 mode bpap-st ipap 14 epap 5 fio2 21\n02:00 ph 7.22 paco2 92 pao2 60 site arterial"
-    )
+    (figure,) = gases("01:00 mode bpap-st ipap 14 epap 5 fio2 21\n02:00 ph 7.22 paco2 92 pao2 60 site arterial")
     assert "gas.negative_gradient" in [w.key for w in figure.warnings]
 
 

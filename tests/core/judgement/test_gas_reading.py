@@ -85,9 +85,7 @@ def test_the_gradient_expected_for_age_is_for_room_air_only_and_names_the_other_
     found = reading("ph 7.40 paco2 40 pao2 80", 60, start=ON_AIR).aa_gradient_expected_mmHg
     assert found.value == 19.0
     assert found.caveats[0].values == {"quarter": 17.5, "regression": pytest.approx(15.1)}
-    assert (
-        reading("ph 7.40 paco2 40 pao2 80", 60).aa_gradient_expected_mmHg.reason.key == "undefined.air_only"
-    )
+    assert reading("ph 7.40 paco2 40 pao2 80", 60).aa_gradient_expected_mmHg.reason.key == "undefined.air_only"
     no_age = reading("ph 7.40 paco2 40 pao2 80", None, start=ON_AIR).aa_gradient_expected_mmHg
     assert no_age.reason.values["input"] == "age"
 
@@ -97,9 +95,7 @@ def test_gases_are_corrected_for_no_temperature_unless_the_ward_says_so():
     start = START + "01:50 temp 39\n"
     off = reading(log, start=start)
     assert off.ph_at_temperature.reason.key == "gas.temperature_correction_off"
-    ward = read_policy(
-        shipped_text().replace("temperature_correction = false", "temperature_correction = true")
-    )
+    ward = read_policy(shipped_text().replace("temperature_correction = false", "temperature_correction = true"))
     on = reading(log, policy=ward, start=start)
     assert on.ph_at_temperature.value == pytest.approx(7.271, abs=0.0005)
     assert on.paco2_at_temperature_mmHg.value == pytest.approx(65.5, abs=0.05)

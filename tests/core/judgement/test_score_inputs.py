@@ -92,6 +92,4 @@ def test_news2_counts_an_oxygen_flow_as_oxygen():
 
 def test_walls_are_anchors_and_the_edges_of_breaks():
     ctx = context("00:50 rr 20\n01:00 mode bpap-st ipap 14 epap 5\n02:00 mask off\n02:20 mask on")
-    assert barriers((moment("01:00"),), ctx.support).tolist() == [
-        moment(t) for t in ("01:00", "02:00", "02:20")
-    ]
+    assert barriers((moment("01:00"),), ctx.support).tolist() == [moment(t) for t in ("01:00", "02:00", "02:20")]

@@ -41,9 +41,7 @@ def inside_hard_limits(name: str) -> st.SearchStrategy[float]:
 @pytest.mark.parametrize("name", FORMULAS)
 @given(data=st.data())
 @settings(max_examples=60)
-def test_no_input_inside_hard_limits_raises_or_gives_an_unexplained_nan(
-    name: str, data: st.DataObject
-) -> None:
+def test_no_input_inside_hard_limits_raises_or_gives_an_unexplained_nan(name: str, data: st.DataObject) -> None:
     plan = PLANS[name]
     values = [data.draw(inside_hard_limits(p), label=p) for p, _ in plan.inputs]
     found = function(name)(*values)

@@ -8,9 +8,7 @@ from core.record.knowledge import head_known_at, standing
 
 
 def entry(seq, value=1.0, action=Action.ASSERT, replaces=0, at=None, episode="E", recorded_at=None):
-    new = NewEntry(
-        episode, "rr", seq if at is None else at, value, action=action, replaces=str(replaces or "")
-    )
+    new = NewEntry(episode, "rr", seq if at is None else at, value, action=action, replaces=str(replaces or ""))
     return recorded(new, seq, str(seq), seq * 10 if recorded_at is None else recorded_at)
 
 
@@ -59,9 +57,7 @@ def test_the_head_known_at_a_moment_is_the_last_recorded_by_it():
 
 
 ACTIONS = st.sampled_from([Action.ASSERT, Action.ASSERT, Action.CORRECT, Action.WITHDRAW, Action.MOVE])
-HISTORIES = st.lists(
-    st.tuples(ACTIONS, st.integers(1, 12), st.integers(0, 30), st.integers(0, 3)), max_size=12
-)
+HISTORIES = st.lists(st.tuples(ACTIONS, st.integers(1, 12), st.integers(0, 30), st.integers(0, 3)), max_size=12)
 
 
 def history(rows):

@@ -30,9 +30,7 @@ from tests.support.ledger_histories import fill, histories, new_store
 from tests.support.ledger_model import LedgerModel
 
 TEXT = st.text(st.characters(codec="utf-8", exclude_characters="\x00"), min_size=1, max_size=12)
-EVIL = st.sampled_from(
-    ["=1+1", "'=x", "''", "-5", "@SUM(A1)", '"', '",', "a\nb", "a\r\nb", "a\rb", "+49", "é\u2028"]
-)
+EVIL = st.sampled_from(["=1+1", "'=x", "''", "-5", "@SUM(A1)", '"', '",', "a\nb", "a\r\nb", "a\rb", "+49", "é\u2028"])
 DEVICE = [k for k in CHANNELS if is_device_channel(k)]
 
 
@@ -46,9 +44,7 @@ def current(store: Store) -> dict[str, list[tuple[object, ...]]]:
             for e in rows
             if e.action in (Action.ASSERT, Action.CORRECT, Action.MOVE)
         ]
-        samples = [
-            (b.channel, int(t), str(v)) for b in store.samples(key) for t, v in zip(b.t, b.v, strict=True)
-        ]
+        samples = [(b.channel, int(t), str(v)) for b in store.samples(key) for t, v in zip(b.t, b.v, strict=True)]
         if values or samples:
             found[key] = [*values, *sorted(samples)]
     return found
@@ -83,9 +79,7 @@ def values(draw: st.DrawFn) -> NewEntry:
         number = draw(st.floats(low, high).map(lambda x: round(x, draw(st.integers(0, 6))))) + 0.0
         new = NewEntry("E", channel.key, NOW, min(max(number, low), high))
         if draw(st.booleans()):
-            new = from_reading(
-                "E", NOW, read_value(channel, f"{new.number:.3f}", channel.unit), confirmed=True
-            )
+            new = from_reading("E", NOW, read_value(channel, f"{new.number:.3f}", channel.unit), confirmed=True)
     elif channel.kind is Kind.INSTANT:
         new = NewEntry("E", channel.key, NOW, float(NOW + draw(st.integers(0, 10**7))))
     elif channel.kind is Kind.CHOICE:
@@ -94,9 +88,7 @@ def values(draw: st.DrawFn) -> NewEntry:
         words = draw(text.filter(lambda x: bool(x) or channel.kind is Kind.MARK))
         new = NewEntry("E", channel.key, NOW, words=words or None)
     by = draw(text.filter(lambda x: x != "device"))
-    return replace(
-        new, episode=draw(text.filter(bool)), at=NOW - draw(st.integers(0, 10**9)), by=by, note=draw(text)
-    )
+    return replace(new, episode=draw(text.filter(bool)), at=NOW - draw(st.integers(0, 10**9)), by=by, note=draw(text))
 
 
 @settings(max_examples=60, deadline=None)
@@ -164,9 +156,7 @@ def test_pressures_that_a_late_entry_contradicts_round_trip(store: Store, tmp_pa
         (50, "ipap", 10.0),
         (20, "epap", 12.0),
     ):
-        new = NewEntry(
-            "E", channel, NOW - 3600 * 10**6 + minute * MINUTE, number, None, f"{number:g}", "cmH2O", 0
-        )
+        new = NewEntry("E", channel, NOW - 3600 * 10**6 + minute * MINUTE, number, None, f"{number:g}", "cmH2O", 0)
         store.append([new], by="AB", operation="log", now=NOW + store.head())
     with round_trip(store, tmp_path) as again:
         assert current(again) == current(store)

@@ -52,9 +52,7 @@ def full(store: Store, tmp_path: Path) -> Store:
     take_in(store, intake, by="AB", now=NOW)
     t = NOW - 3_600_000_000 + np.array([0, 1, 2, 3, 7, 8]) * 1_000_000
     v = np.array([24.5, np.nan, 25.0, 26.0, 24.0, 24.0])
-    store.append(
-        (), by="AB", operation="test", now=NOW, samples=(DeviceSamples("E1", "leak", "dev", t, v, 1),)
-    )
+    store.append((), by="AB", operation="test", now=NOW, samples=(DeviceSamples("E1", "leak", "dev", t, v, 1),))
     return store
 
 
@@ -73,8 +71,7 @@ def test_precision_codes_and_units_as_written(full: Store, tmp_path: Path) -> No
     assert write_fhir(full, path) == len(ROWS) + 2
     lines = texts_by_channel(path)
     assert (
-        '"valueQuantity":{"value":7.40,"unit":"pH","system":"http://unitsofmeasure.org","code":"[pH]"}'
-        in lines["ph"]
+        '"valueQuantity":{"value":7.40,"unit":"pH","system":"http://unitsofmeasure.org","code":"[pH]"}' in lines["ph"]
     )
     assert '"value":8.0,"unit":"kPa","system":"http://unitsofmeasure.org","code":"kPa"' in lines["paco2"]
     assert '"value":2.50,' in lines["be"]

@@ -118,9 +118,9 @@ def test_no_two_exports_and_no_two_episodes_are_moved_alike(ward: Store, tmp_pat
     assert all(abs(at - AT) > 365 * DAY for at in moments)
 
 
-_WORD = st.text(
-    st.characters(categories=("Lu", "Ll", "Nd", "Zs", "Po", "So")), min_size=5, max_size=30
-).filter(lambda t: t.strip() == t and len(t.strip()) >= 5)
+_WORD = st.text(st.characters(categories=("Lu", "Ll", "Nd", "Zs", "Po", "So")), min_size=5, max_size=30).filter(
+    lambda t: t.strip() == t and len(t.strip()) >= 5
+)
 _TYPED = [c.key for c in CHANNELS.values() if c.kind in (Kind.TEXT, Kind.MARK)]
 _OPEN = [c.key for c in CHANNELS.values() if c.open_choice]
 _FIXED = {

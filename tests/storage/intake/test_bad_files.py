@@ -85,9 +85,7 @@ HOSTILE: list[tuple[str, Callable[[Path], Path], str]] = [
     ("nested", lambda p: write_xlsx(p, "<a>" * 10_000 + "</a>" * 10_000), "sheet.too_deep"),
     (
         "a lone cell in the far corner",
-        lambda p: write_xlsx(
-            p, sheet_xml(ROWS, extra='<row r="1048576"><c r="XFD1048576"><v>1</v></c></row>')
-        ),
+        lambda p: write_xlsx(p, sheet_xml(ROWS, extra='<row r="1048576"><c r="XFD1048576"><v>1</v></c></row>')),
         "sheet.too_many_cells",
     ),
     ("no address", lambda p: write_xlsx(p, sheet_xml(ROWS).replace('r="A1"', 'r="A0"')), "sheet.damaged"),
@@ -172,9 +170,7 @@ def test_hostile_text(tmp_path: Path, data: bytes, key: str) -> None:
 def test_a_wrong_encoding_named_by_a_person_is_refused_by_line(tmp_path: Path, store: Store) -> None:
     path = tmp_path / "a.csv"
     path.write_bytes("time,pH,note\n2026-03-28 00:30,7.4,müde\n".encode("cp1252"))
-    intake = operations.read(
-        store, "AB", NOW, ReadRequest(path, MAPPING, episode="E1", encoding="utf-8")
-    ).value
+    intake = operations.read(store, "AB", NOW, ReadRequest(path, MAPPING, episode="E1", encoding="utf-8")).value
     assert [(r.line, r.message.key) for r in intake.refusals] == [(2, "file.encoding")]
 
 
@@ -220,9 +216,7 @@ def test_cancelled_at_any_report_nothing_stays(tmp_path: Path, store: Store, kin
         raise CancelledError
 
     with watched(stop), pytest.raises(CancelledError):
-        operations.read(
-            store, "AB", NOW, ReadRequest(path, MAPPING if kind == "table" else None, episode="E1")
-        )
+        operations.read(store, "AB", NOW, ReadRequest(path, MAPPING if kind == "table" else None, episode="E1"))
     assert store.head() == 0
 
 

@@ -63,9 +63,7 @@ def rows(draw: st.DrawFn) -> str:
 
 
 def outcome(intake: Intake) -> tuple[object, ...]:
-    samples = {
-        (s.episode, s.channel): (s.t.tolist(), [str(x) for x in s.v], s.decimals) for s in intake.samples
-    }
+    samples = {(s.episode, s.channel): (s.t.tolist(), [str(x) for x in s.v], s.decimals) for s in intake.samples}
     entries = [(d.entry, d.id) for d in intake.entries]
     refusals = [(r.line, r.column, r.value, r.message.key) for r in intake.refusals]
     return (
@@ -88,9 +86,7 @@ def read(path: Path, *, slow: bool) -> Intake:
 
 @settings(max_examples=200, deadline=None)
 @given(st.lists(rows(), max_size=30), st.sampled_from(["\n", "\r\n"]))
-@example(
-    [f"E1,{at},leak,{v},L/min,device,," for at, v in zip(_TIMES, _VALUES, strict=False) if "," not in v], "\n"
-)
+@example([f"E1,{at},leak,{v},L/min,device,," for at, v in zip(_TIMES, _VALUES, strict=False) if "," not in v], "\n")
 def test_the_quick_way_equals_the_slow_way(lines: list[str], end: str) -> None:
     with tempfile.TemporaryDirectory() as place:
         path = Path(place) / "log.csv"
@@ -133,9 +129,7 @@ def test_samples_packed_early_are_the_same(tmp_path: Path, monkeypatch: pytest.M
     assert [(r[0], r[3]) for r in plain[2]] == [(2502, "row.repeated")]  # type: ignore[index,attr-defined]
 
 
-def test_blocks_give_the_same_rows_wherever_they_are_cut(
-    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
-) -> None:
+def test_blocks_give_the_same_rows_wherever_they_are_cut(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     from storage.intake import text_blocks
 
     lines = [f'E{i},2026-03-28T01:00:00Z,note,"one, ""two""\nthree {"x" * i}",,AB,,' for i in range(60)]

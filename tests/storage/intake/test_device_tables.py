@@ -75,9 +75,7 @@ def test_gaps_stay_a_later_file_wins_and_nothing_is_taken_twice(tmp_path: Path, 
     assert ((leak.t[1:] - leak.t[:-1]) // MINUTE).max() == 81, "the gap between the files stays a gap"
     assert leak.v.tolist() == [20.0] * 50 + [30.0] * 70 + [20.0] * 30
     settings = [e for e in store.entries("E1") if e.channel == "ipap"]
-    assert [(e.number, (e.at - START) // MINUTE) for e in settings] == [(16.0, 0), (20.0, 90)], (
-        "no change repeated"
-    )
+    assert [(e.number, (e.at - START) // MINUTE) for e in settings] == [(16.0, 0), (20.0, 90)], "no change repeated"
     head = store.head()
     for path in (second, late):
         again = read(path, store)
@@ -133,9 +131,7 @@ def test_the_way_by_columns_and_the_way_by_rows_agree(tmp_path: Path) -> None:
 def test_times_of_a_night_with_a_change_of_the_clock_are_refused_where_they_came_twice(
     tmp_path: Path,
 ) -> None:
-    rows = ["time,vte (mL)"] + [
-        f"2025-10-26 0{h}:{m:02d},{400 + m}" for h in (1, 2, 3) for m in range(0, 60, 10)
-    ]
+    rows = ["time,vte (mL)"] + [f"2025-10-26 0{h}:{m:02d},{400 + m}" for h in (1, 2, 3) for m in range(0, 60, 10)]
     path = tmp_path / "a.csv"
     path.write_text("\n".join(rows) + "\n")
     mapping = replace(propose(open_table(path), "Europe/Oslo").mapping, written_by="device")

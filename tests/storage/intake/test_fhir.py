@@ -132,9 +132,7 @@ def test_components_are_read_each_by_its_own_code(read: Reader) -> None:
     intake = read(panel)
     assert of(intake, "sbp") == ["124 mmHg"]
     assert refused(intake) == [("component[1]", "value.past_hard_limit")]
-    assert aside(intake) == ["code.not_ours"], (
-        "the panel itself has no value and needs no reason; 8478-0 does"
-    )
+    assert aside(intake) == ["code.not_ours"], "the panel itself has no value and needs no reason; 8478-0 does"
 
 
 def test_members_are_read_and_take_the_time_of_their_panel_in_doubt(read: Reader) -> None:

@@ -25,9 +25,7 @@ KNOWN = Said(episodes={"WARD-7|0042": "E1"})
 
 @pytest.fixture
 def read(tmp_path: Path) -> Reader:
-    def run(
-        *messages: str, said: Said = KNOWN, existing: Store | None = None, raw: bytes | None = None
-    ) -> Intake:
+    def run(*messages: str, said: Said = KNOWN, existing: Store | None = None, raw: bytes | None = None) -> Intake:
         path = tmp_path / "results.hl7"
         path.write_bytes("".join(messages).encode() if raw is None else raw)
         return read_hl7(path, now=NOW, said=said, existing=existing)
@@ -40,9 +38,7 @@ def taken(store: Store, intake: Intake) -> None:
 
 
 def now_standing(store: Store, channel: str, episode: str = "E1") -> list[tuple[float | None, bool]]:
-    return [
-        (s.entry.number, s.corrected) for s in standing(store.entries(episode)) if s.entry.channel == channel
-    ]
+    return [(s.entry.number, s.corrected) for s in standing(store.entries(episode)) if s.entry.channel == channel]
 
 
 @pytest.mark.parametrize("end", ["\r", "\n", "\r\n"])
@@ -98,9 +94,7 @@ def test_what_cannot_be_taken_is_refused_with_its_line(read: Reader, row: str, k
 
 def test_what_is_not_for_this_log_is_left_aside_with_the_reason(read: Reader) -> None:
     sodium = "OBX|1|NM|2951-2^Na^LN||140|mmol/L^^UCUM|||||F"
-    intake = read(
-        message([sodium, obx("ph", "", status="F"), obx("ph", "", status="I"), obx("ph", "", status="X")])
-    )
+    intake = read(message([sodium, obx("ph", "", status="F"), obx("ph", "", status="I"), obx("ph", "", status="X")]))
     assert [a.message.key for a in intake.aside] == [
         "code.not_ours", "result.no_value", "result.not_yet", "result.nothing_to_withdraw",
     ]  # fmt: skip
@@ -116,9 +110,7 @@ def test_a_local_code_is_read_where_a_person_gave_it_a_channel(read: Reader) -> 
     row = obx("ph", "7.31").replace("2744-1^pH^LN", "PHA^pH^L")
     assert read(message([row])).aside[0].message.key == "code.not_ours"
     said = Said(episodes=KNOWN.episodes, codes={"L|PHA": "ph"})
-    assert [d.entry.raw for d in read(message([row]), said=said).entries if d.entry.channel == "ph"] == [
-        "7.31"
-    ]
+    assert [d.entry.raw for d in read(message([row]), said=said).entries if d.entry.channel == "ph"] == ["7.31"]
 
 
 # versions
@@ -210,9 +202,7 @@ def test_a_patient_with_two_open_episodes_is_asked(read: Reader, store: Store) -
             read(message(gas(), order=order), said=Said(episodes={"WARD-7|0042": episode}), existing=store),
         )
     text = message(gas(), order="F3", at="202603280125+0000")
-    assert {r.message.key for r in read(text, said=Said(), existing=store).refusals} == {
-        "patient.several_episodes"
-    }
+    assert {r.message.key for r in read(text, said=Said(), existing=store).refusals} == {"patient.several_episodes"}
     one = read(text, said=Said(episodes={"*": "E2"}), existing=store)
     assert {d.entry.episode for d in one.entries} == {"E2"}
 
@@ -255,10 +245,7 @@ def test_a_time_without_offset_needs_a_zone(read: Reader) -> None:
     text = message(gas(), at="202603280125", sent="202603280130")
     assert {r.message.key for r in read(text).refusals} == {"time.needs_zone"}
     intake = read(text, said=Said(zone="Europe/Oslo", episodes=KNOWN.episodes))
-    assert (
-        iso(next(d.entry.at for d in intake.entries if d.entry.channel == "ph"))
-        == "2026-03-28T00:25:00+00:00"
-    )
+    assert iso(next(d.entry.at for d in intake.entries if d.entry.channel == "ph")) == "2026-03-28T00:25:00+00:00"
     for shown, key in (("202510260230", "time.repeated"), ("202603290230", "time.skipped")):
         with pytest.raises(RecordError) as refused:
             parse_dtm(shown, "Europe/Oslo")

@@ -25,9 +25,7 @@ Reader = Callable[..., Intake]
 def read(tmp_path: Path) -> Reader:
     """Read rows under a header as a file."""
 
-    def run(
-        *rows: str, header: str = HEADER, existing: Store | None = None, raw: bytes | None = None
-    ) -> Intake:
+    def run(*rows: str, header: str = HEADER, existing: Store | None = None, raw: bytes | None = None) -> Intake:
         path = tmp_path / "log.csv"
         path.write_bytes("\n".join((header, *rows)).encode() + b"\n" if raw is None else raw)
         return read_log_csv(path, now=NOW, existing=existing)
@@ -134,9 +132,7 @@ def test_every_fault_of_a_row_is_reported(read: Reader) -> None:
         (HEADER.encode() + b'\nE1,2026-03-28T01:00:00+00:00,note,"never closed,,AB,\n', 2, "row.quotes"),
     ],
 )  # fmt: skip
-def test_a_file_that_is_no_log_is_refused(
-    read: Reader, store: Store, raw: bytes, line: int, key: str
-) -> None:
+def test_a_file_that_is_no_log_is_refused(read: Reader, store: Store, raw: bytes, line: int, key: str) -> None:
     intake = read(raw=raw)
     assert [(r.line, r.message.key) for r in intake.refusals] == [(line, key)]
     assert not intake.whole
@@ -194,9 +190,7 @@ def test_a_value_corrected_in_the_store_does_not_come_back(read: Reader, store: 
 def test_ipap_must_exceed_epap_over_the_settings_in_force(read: Reader, store: Store) -> None:
     take_in(store, read(f"E1,{AT},ipap,16,,AB,", f"E1,{AT},epap,6,,AB,"), by="AB", now=NOW)
     later = "2026-03-28T01:30:00+00:00"
-    assert refused(read(f"E1,{later},epap,16,,AB,", existing=store)) == [
-        (2, "value", "settings.ipap_not_above_epap")
-    ]
+    assert refused(read(f"E1,{later},epap,16,,AB,", existing=store)) == [(2, "value", "settings.ipap_not_above_epap")]
     both = read(f"E1,{later},epap,16,,AB,", f"E1,{later},ipap,22,,AB,", existing=store)
     assert refused(both) == []
 
@@ -222,8 +216,7 @@ def test_a_soft_limit_marks_the_entry_doubtful(read: Reader) -> None:
 
 def test_a_gas_that_does_not_agree_with_itself_is_marked(read: Reader) -> None:
     rows = [
-        f"E1,{AT},{c},{v},{u},AB,"
-        for c, v, u in (("ph", "7.25", ""), ("paco2", "68", "mmHg"), ("hco3", "22", ""))
+        f"E1,{AT},{c},{v},{u},AB," for c, v, u in (("ph", "7.25", ""), ("paco2", "68", "mmHg"), ("hco3", "22", ""))
     ]
     intake = read(*rows)
     assert {d.entry.doubt for d in intake.entries} == {"gas.inconsistent"}
@@ -249,9 +242,7 @@ def test_the_definition_of_leak_becomes_an_entry_where_it_is_new(read: Reader, s
     take_in(store, intake, by="AB", now=NOW)
     later = read("E1,2026-03-28T01:30:00+00:00,leak,24,L/min,device,,total", header=header, existing=store)
     assert later.entries == ()
-    changed = read(
-        "E1,2026-03-28T01:40:00+00:00,leak,24,L/min,device,,unintentional", header=header, existing=store
-    )
+    changed = read("E1,2026-03-28T01:40:00+00:00,leak,24,L/min,device,,unintentional", header=header, existing=store)
     assert [d.entry.words for d in changed.entries] == ["unintentional"]
     wrong = read(f"E1,{AT},leak,24,L/min,device,,mostly", header=header)
     assert refused(wrong) == [(2, "leak_definition", "value.not_a_choice")]
@@ -260,9 +251,7 @@ def test_the_definition_of_leak_becomes_an_entry_where_it_is_new(read: Reader, s
 FULL = HEADER + ",recorded_at,id,replaces,action,reason,zone"
 
 
-def test_recording_times_stand_in_an_empty_imported_store(
-    read: Reader, make_store: Callable[..., Store]
-) -> None:
+def test_recording_times_stand_in_an_empty_imported_store(read: Reader, make_store: Callable[..., Store]) -> None:
     store = make_store(imported=True)
     intake = read(
         f"E1,{AT},rr,20,/min,AB,,2026-03-28T01:10:00+00:00,a,,,,",
@@ -279,16 +268,12 @@ def test_recording_times_stand_in_an_empty_imported_store(
 
 
 def test_recording_times_are_only_claims_in_another_store(read: Reader, store: Store) -> None:
-    take_in(
-        store, read(f"E1,{AT},rr,20,/min,AB,,2026-03-28T01:10:00+00:00,,,,,", header=FULL), by="AB", now=NOW
-    )
+    take_in(store, read(f"E1,{AT},rr,20,/min,AB,,2026-03-28T01:10:00+00:00,,,,,", header=FULL), by="AB", now=NOW)
     assert [e.recorded_at for e in store.entries("E1")] == [NOW]
     with store._opened.database.read() as c:
         from sqlalchemy import text
 
-        assert c.execute(text("select source_recorded_at from entry")).scalar() == parse(
-            "2026-03-28T01:10:00+00:00"
-        )
+        assert c.execute(text("select source_recorded_at from entry")).scalar() == parse("2026-03-28T01:10:00+00:00")
 
 
 @pytest.mark.parametrize(

@@ -200,9 +200,7 @@ def test_a_long_table_names_its_channels_and_units(write: Write) -> None:
     )
     proposal = propose(open_table(path), ZONE)
     long = proposal.mapping.long
-    assert long == LongUse(
-        "Test", "Result", "Unit", {"pCO2": "paco2", "pH": "ph", "Sodium": "", "pO2": "pao2"}, {}
-    )
+    assert long == LongUse("Test", "Result", "Unit", {"pCO2": "paco2", "pH": "ph", "Sodium": "", "pO2": "pao2"}, {})
     intake = read_table(path, replace(proposal.mapping, written_by="person"), now=NOW)
     assert [(d.entry.episode, d.entry.channel, d.entry.raw_unit) for d in intake.entries] == [
         ("E1", "paco2", "kPa"), ("E2", "ph", "pH"),

@@ -63,9 +63,7 @@ def test_the_same_file_may_come_again_after_its_withdrawal(tmp_path: Path, store
 
 def test_results_go_and_their_corrections_give_back_the_value_before(tmp_path: Path, store: Store) -> None:
     first = take_hl7(store, tmp_path / "a.hl7", message(gas()))
-    second = take_hl7(
-        store, tmp_path / "b.hl7", message([obx("ph", "7.25", status="C")], sent="202603280100+0000")
-    )
+    second = take_hl7(store, tmp_path / "b.hl7", message([obx("ph", "7.25", status="C")], sent="202603280100+0000"))
     withdraw_source(store, second, by="CD", now=NOW)
     assert numbers(store, "ph") == [7.31]
     made = withdraw_source(store, first, by="CD", now=NOW)

@@ -61,10 +61,7 @@ def test_the_baseline_makes_the_same_schema_as_a_new_store(tmp_path: Path, store
     directory = upgrade._directory(upgrade.SCRIPTS)
     upgrade._step(database, directory, "0001")
     with database.read() as c:
-        assert (
-            compare_metadata(MigrationContext.configure(c, opts={"compare_type": True}), schema.metadata)
-            == []
-        )
+        assert compare_metadata(MigrationContext.configure(c, opts={"compare_type": True}), schema.metadata) == []
     assert _schema(database) == _schema(store._opened.database)
     database.close()
 

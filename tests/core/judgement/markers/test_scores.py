@@ -10,8 +10,10 @@ from core.judgement.policy import read_policy, shipped_text
 from core.judgement.scores import breathes_oxygen, news2
 from tests.support.flag_cases import COPD, LUNG, START, ctx, due, met, told
 
-BASE = LUNG + "00:30 ph 7.42 paco2 36 pao2 60 site arterial gas_fio2 0.4 rr 34 gcs 15 hr 110\n" + START.replace(
-    "fio2 30", "fio2 50"
+BASE = (
+    LUNG
+    + "00:30 ph 7.42 paco2 36 pao2 60 site arterial gas_fio2 0.4 rr 34 gcs 15 hr 110\n"
+    + START.replace("fio2 30", "fio2 50")
 )
 AT = "02:00 ph 7.42 paco2 36 pao2 {pao2} site arterial {seen}"
 
