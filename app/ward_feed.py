@@ -12,6 +12,7 @@ from app.preferences import Preferences
 from app.session import Changed, SessionModel, What
 from app.shift import shift_of
 from app.ward.lane_words import OnWard
+from app.ward.moves import moves_of
 from app.ward_view import WardContent
 from core.judgement.policy import Policy
 
@@ -87,7 +88,8 @@ class WardFeed(QObject):
             self._answers[one.figures.episode] = one
         self._answered_once = True
         self._on_ward = {
-            key: OnWard(a.figures, course_of(a.record, a.figures.as_of)) for key, a in self._answers.items()
+            key: OnWard(a.figures, course_of(a.record, a.figures.as_of), moves_of(a.record, a.figures.as_of))
+            for key, a in self._answers.items()
         }
         self.refreshed.emit(self.content())
 

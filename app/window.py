@@ -29,6 +29,7 @@ from app.session import Changed, SessionModel, What
 from app.shift import Shift, shift_of
 from app.theme import THEMES, Theme, apply_theme
 from app.top_bar import TopBar
+from app.ward.moves import label_told_apart
 from app.ward_feed import WardFeed
 from app.ward_view import WardContent
 from app.words import Reader, sentence
@@ -381,7 +382,8 @@ class MainWindow(QMainWindow):
             o.strip.set_patient(None, "", session.zone, unit)
         else:
             off_mask = answer.figures.support.break_since is not None
-            o.strip.set_patient(answer.record, answer.figures.label, session.zone, unit, off_mask=off_mask)
+            label = label_told_apart(o.feed.answers, answer.figures.episode, session.moment(), session.zone)
+            o.strip.set_patient(answer.record, label, session.zone, unit, off_mask=off_mask)
             o.pages.ward.select(answer.figures.episode)
         self._set_ticks()
 

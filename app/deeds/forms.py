@@ -53,7 +53,7 @@ class FormDeeds(Doer):
         answer = feed.answers.get(key or "") if feed is not None else None
         if answer is None:
             return
-        patient = Patient(answer.record, answer.figures.label)
+        patient = Patient(answer.record, self.strip.whom.text())
         form = kind(patient, self.model, self.window.preferences.gas_unit, self.window.theme, self.window)
         form.recorded.connect(self._form_recorded)
         form.open()

@@ -11,6 +11,7 @@ from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
 from app.course import Course
 from app.finding_names import due_name, marker_name
 from app.formats import clock, minutes, quantity
+from app.headline import gas_state_word, headline, off_mask_word, sign_of, state_now, verdict_with_loss
 from app.phrases import (
     change_sentence,
     change_word,
@@ -23,7 +24,8 @@ from app.phrases import (
     support_now,
     verdict_or_none,
 )
-from app.theme import Tier, Verdict, state_word, tier_word, verdict_of, verdict_word
+from app.theme import Tier, Verdict, tier_word, verdict_word
+from app.ward.moves import Move, move_sentence
 from app.ward.ordering import is_ended, next_due
 from app.words import Reader, sentence
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, JudgedGas, ResponseFigure
@@ -44,6 +46,7 @@ class OnWard:
 
     figures: EpisodeFigures
     course: Course
+    moves: tuple[Move, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,7 +70,7 @@ class LaneWords:
         """The lane of an episode. `ambiguous`: another episode carries the same label, so tell them apart."""
         f, course = on_ward.figures, on_ward.course
         ended = is_ended(f)
-        latest = _latest_verdict(f)
+        told = headline(f)
         gas = _latest_gas(f)
         strongest = strongest_flag(f)
         due = None if ended else next_due(f)
@@ -76,19 +79,18 @@ class LaneWords:
             title=f.label,
             subtitle=self._subtitle(f, ambiguous),
             support=tuple(self._pieces(course)),
-            items=tuple(sorted(self._items(f, course), key=lambda i: i.at)),
+            items=tuple(sorted((*self._items(f, course), *self._moves(on_ward.moves)), key=lambda i: i.at)),
             state=state_of(gas.state) if gas is not None else None,
-            state_word=state_word(state_of(gas.state))
-            if gas is not None
-            else translate("ward", "no gas yet"),
-            verdict=latest,
-            verdict_word=verdict_word(latest) if latest is not None else "",
+            state_word=self._state_word(f, gas),
+            verdict=told.sign if told is not None else None,
+            verdict_word=told.short if told is not None else "",
             tier=Tier(strongest.tier) if strongest is not None else None,
             flag_word=short_flags(flag_words(f)),
             due_word=self._due_word(due) if not ended else self._end_word(f),
             due_late=due is not None and due.state == "overdue",
             first_word=translate("ward", "See first") if first else "",
             closed=ended,
+            off_mask=bool(off_mask_word(f, self.zone)),
             sentence=self.lane_sentence(f),
             payload=f.episode,
         )
@@ -102,7 +104,16 @@ class LaneWords:
             told = translate("ward", "{indication}, from {time}").format(
                 indication=told, time=clock(s.since, self.zone)
             )
+        if off_mask_word(f, self.zone):
+            return translate("ward", "{indication}, mask off").format(indication=told)
+        elif ambiguous:
+            told = f"{told}, {f.episode}"
         return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
+
+    def _state_word(self, f: EpisodeFigures, gas: GasFigure | None) -> str:
+        """The state; a mask that is off comes first, since no setting acts then."""
+        state = state_now(f, gas, self.gas_unit) if gas is not None else translate("ward", "no gas yet")
+        return "; ".join(x for x in (off_mask_word(f, self.zone), state) if x)
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
@@ -133,18 +144,27 @@ class LaneWords:
         """The whole episode in words, for the status line and for screen readers."""
         s = f.support
         setting = support_now(s.mode, s.ipap_cmH2O, s.epap_cmH2O, s.fio2, s.o2_flow_L_per_min)
+        off = off_mask_word(f, self.zone)
+        if off:
+            setting = translate("ward", "{off} (before: {setting})").format(off=off, setting=setting) if setting else off
         parts = [f.label, self._indication(f), "" if is_ended(f) else setting]
         gas = _latest_gas(f)
         if gas is not None:
             parts.append(
-                f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_word(state_of(gas.state))})"
+                f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_now(f, gas, self.gas_unit)})"
             )
-        latest = _latest_verdict(f)
-        if latest is not None:
-            parts.append(verdict_word(latest))
+        parts += self._verdict_sentences(f)
         parts += flag_words(f)
         parts.append(self._end_word(f) if is_ended(f) else self._due_word(next_due(f)))
         return ". ".join(p for p in parts if p)
+
+    def _verdict_sentences(self, f: EpisodeFigures) -> Iterator[str]:
+        told = headline(f)
+        if told is not None:
+            yield told.word
+            if told.since_start is not None:
+                word = verdict_word(told.since_start)
+                yield translate("ward", "since the start: {verdict}").format(verdict=word)
 
     # along the clock
 
@@ -163,7 +183,7 @@ class LaneWords:
     def _items(self, f: EpisodeFigures, course: Course) -> Iterator[LaneItem]:
         judged = dict(_judged(f))
         for gas in f.gases:
-            yield self._gas_item(gas, judged.get(gas.at))
+            yield self._gas_item(f, gas, judged.get(gas.at))
         words = _tick_words(course)
         for n, s in enumerate(course.stretches):
             yield LaneItem(
@@ -188,14 +208,24 @@ class LaneWords:
             if flag.strongest and flag.state != "no longer met":
                 yield self._flag_item(flag)
 
-    def _gas_item(self, gas: GasFigure, found: tuple[ResponseFigure, JudgedGas] | None) -> LaneItem:
+    def _moves(self, moves: tuple[Move, ...]) -> Iterator[LaneItem]:
+        """Each move as a tick of its own, with where the patient came from."""
+        for move in moves:
+            word = translate("ward", "from {before}").format(before=move.before)
+            yield LaneItem(LaneKind.SETTING, move.at, move_sentence(move, self.zone), word=word, payload=move)
+
+    def _gas_item(
+        self, f: EpisodeFigures, gas: GasFigure, found: tuple[ResponseFigure, JudgedGas] | None
+    ) -> LaneItem:
         verdict = verdict_or_none(found[1].verdict) if found is not None else None
         parts = [
             f"{clock(gas.at, self.zone)} {gas_name(gas)}: {gas_words(gas, self.gas_unit)}",
-            state_word(state_of(gas.state)),
+            gas_state_word(f, gas),
         ]
         if found is not None and verdict is not None:
             parts.append(self._verdict_sentence(verdict, found[0], found[1]))
+            since = found[1].since_start
+            verdict = sign_of(verdict, lost=since.gain_lost, since_start=verdict_or_none(since.verdict))
         if gas.doubt:
             parts.append(translate("ward", "doubtful: outside usual limits and not confirmed"))
         if gas.corrected:
@@ -214,11 +244,17 @@ class LaneWords:
     def _verdict_sentence(self, verdict: Verdict, response: ResponseFigure, judged: JudgedGas) -> str:
         text = translate("ward", "{verdict}, {minutes} after {anchor} at {time}")
         return text.format(
-            verdict=verdict_word(verdict),
+            verdict=verdict_with_loss(verdict, lost=judged.since_start.gain_lost),
             minutes=minutes(judged.minutes),
             anchor=anchor_name(response),
             time=clock(response.anchor_at, self.zone),
-        )
+        ) + self._since_start(judged)
+
+    def _since_start(self, judged: JudgedGas) -> str:
+        against = verdict_or_none(judged.since_start.verdict)
+        if against is None:
+            return ""
+        return translate("ward", "; since the start: {verdict}").format(verdict=verdict_word(against))
 
     def _change_sentence(self, n: int, course: Course) -> str:
         s = course.stretches[n]
@@ -344,13 +380,6 @@ def short_flags(names: list[str]) -> str:
 def _latest_gas(f: EpisodeFigures) -> GasFigure | None:
     usable = [g for g in f.gases if g.site != "venous"]
     return usable[-1] if usable else None
-
-
-def _latest_verdict(f: EpisodeFigures) -> Verdict | None:
-    told = [r for r in f.responses if r.headline_gas_at is not None]
-    if told:
-        return verdict_of(max(told, key=lambda r: (r.headline_gas_at or 0, r.anchor_at)).headline)
-    return verdict_of(f.responses[-1].headline) if f.responses else None
 
 
 def _judged(f: EpisodeFigures) -> Iterator[tuple[Instant, tuple[ResponseFigure, JudgedGas]]]:

@@ -17,8 +17,12 @@ class Legend(QWidget):
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(theme.px(4))
         for state in (GasState.SEVERE, GasState.ACIDOTIC, GasState.RESOLVED):
-            word = QLabel(state_word(state))
+            word = QLabel(self._word(state))
             word.setProperty("role", "caption")
             row.addWidget(Sign(theme, state))
             row.addWidget(word)
             row.addSpacing(theme.px(8))
+
+    def _word(self, state: GasState) -> str:
+        """One shape serves both: what was never acidotic has not resolved."""
+        return self.tr("resolved, or not acidotic") if state is GasState.RESOLVED else state_word(state)

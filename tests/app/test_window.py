@@ -346,7 +346,7 @@ def test_a_flag_is_seen_and_settled_with_a_reason(qtbot, window):
     dialog.go.click()
     until(qtbot, lambda: state_of_flag(window, flag.flag_id)[0] == "settled")
     assert strongest(window).flag_id != flag.flag_id
-    assert not window.strip.can_undo  # a word on a flag stands; a new one may follow
+    assert window.strip.can_undo
 
 
 def strongest(window):

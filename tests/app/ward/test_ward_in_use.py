@@ -1,0 +1,84 @@
+"""The ward as it changes through a night: equal beds, moves, the clock, what another process writes."""
+
+import pytest
+from PySide6.QtCore import Qt
+
+from app import clock
+from app.chart.shapes import LaneKind
+from app.clock import Clock
+from app.operations import entry, episode
+from core.record.instant import MINUTE
+from storage.store import Store
+from tests.support.open_window import NOW, make_store, open_window, settled, until
+
+
+@pytest.fixture
+def window(qtbot, tmp_path):
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
+        yield made
+
+
+def lane(window, key):
+    return next(x for x in window.pages.ward.lanes.spec.lanes if x.key == key)
+
+
+def type_line(qtbot, window, text):
+    window.strip.focus()
+    qtbot.keyClicks(window.strip.line, text)
+    settled(qtbot, window)
+    qtbot.keyClick(window.strip.line, Qt.Key.Key_Return)
+
+
+def test_two_patients_of_one_bed_are_told_apart_wherever_a_line_is_logged(qtbot, window):
+    with Store.open(window.model.session.store_path) as other:
+        facts = {"label": "Bed 7", "indication": "pneumonia"}
+        episode.begin(other, "CD", NOW - 60 * MINUTE, episode.BeginRequest("bed-7-second", facts))
+        entry.log_line(other, "CD", NOW, entry.LineRequest("bed-7-second", "50m ago cpap 8 fio2 40", "UTC"))
+    window.model.look_for_changes()
+    until(qtbot, lambda: "bed-7-second" in window.pages.ward.shown_keys())
+    assert lane(window, "bed-7").title == lane(window, "bed-7-second").title == "Bed 7"
+    assert "from 00:00" in lane(window, "bed-7").subtitle
+    assert "bed-7-second" in lane(window, "bed-7-second").subtitle  # since when it runs is not recorded
+    window.select("bed-7")
+    assert window.strip.whom.text() == "Bed 7 (from 00:00)"
+    window.select("bed-7-second")
+    assert window.strip.whom.text() == "Bed 7 (bed-7-second)"
+    type_line(qtbot, window, "rr 30")
+    until(qtbot, lambda: "Recorded for Bed 7 (bed-7-second)" in window.strip.plain())
+    window.select("bed-3")
+    assert window.strip.whom.text() == "Bed 3"
+
+
+def test_a_bed_move_shows_and_a_corrected_label_is_none(qtbot, window):
+    window.select("bed-7")
+    type_line(qtbot, window, "04:45 label Bed 12")
+    until(qtbot, lambda: lane(window, "bed-7").title == "Bed 12")
+    ticks = [i for i in lane(window, "bed-7").items if i.kind is LaneKind.SETTING and "moved" in i.sentence]
+    assert [i.sentence for i in ticks] == ["04:45 moved from Bed 7 to Bed 12"]
+    assert ticks[0].word == "from Bed 7"
+    assert window.strip.whom.text() == "Bed 12"
+    window.pages.ward.search.setText("bed 12")
+    assert window.pages.ward.shown_keys() == ("bed-7",)
+    window.pages.ward.search.clear()
+    window.strip.undo()
+    until(qtbot, lambda: lane(window, "bed-7").title == "Bed 7")
+    assert not [i for i in lane(window, "bed-7").items if "moved" in i.sentence]
+
+
+def test_the_now_line_moves_with_the_clock(qtbot, tmp_path, monkeypatch):
+    began = clock.real_now()
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), clock=Clock(NOW, began)) as window:
+        first = window.pages.ward.lanes.spec.now
+        monkeypatch.setattr(clock, "real_now", lambda: began + 10 * MINUTE)
+        window.model._ticked()  # what its timer does every 15 s
+        until(qtbot, lambda: window.pages.ward.lanes.spec.now == NOW + 10 * MINUTE)
+        assert window.pages.ward.lanes.spec.now > first
+
+
+def test_closed_episodes_stay_dimmed_and_filters_leave_them_out(qtbot, window):
+    window.select("bed-3")
+    type_line(qtbot, window, "stopped end_reason weaned")
+    until(qtbot, lambda: lane(window, "bed-3").closed)
+    assert "weaned" in lane(window, "bed-3").due_word
+    window.actions_by_key["filter_not_responding"].trigger()
+    assert "bed-3" not in window.pages.ward.shown_keys()
