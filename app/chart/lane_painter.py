@@ -10,6 +10,7 @@ from app.chart.time_ticks import ClockMark, date_word
 from app.theme import GasState, Theme
 
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
+_DIMMED = 0.45  # settings that were in force before the mask came off
 _FULL_SUPPORT = 20.0  # cmH2O of pressure support that fill the bar
 
 
@@ -198,14 +199,28 @@ class LanePainter:
         low = [p.x for p in placed if p.item.kind is LaneKind.GAS and p.row > self.g.middle]
         taken = [(x - self.theme.px(12), x + self.theme.px(12)) for x in low]  # marks that reach into the foot
         for kind in (LaneKind.WINDOW, LaneKind.SETTING, LaneKind.FLAG, LaneKind.GAS):
+            if kind is LaneKind.SETTING:
+                self._draw_settings(painter, lane, placed, taken)
+                continue
             for p in placed:
                 if p.item.kind is kind:
                     self._draw_item(painter, p, taken)
-            if kind is LaneKind.SETTING:
-                self._draw_support_words(painter, lane, taken)
         for p in placed:
             if p.item is chosen:
                 self._ring(painter, p.box.adjusted(-1, -1, 1, 1), 2.0)
+
+    def _draw_settings(
+        self, painter: QPainter, lane: Lane, placed: list[Placed], taken: list[tuple[float, float]]
+    ) -> None:
+        """The newest first, so that its words win where they would collide with older ones."""
+        painter.save()
+        if lane.off_mask:
+            painter.setOpacity(painter.opacity() * _DIMMED)
+        for p in reversed(placed):
+            if p.item.kind is LaneKind.SETTING:
+                self._draw_setting(painter, p, taken)
+        self._draw_support_words(painter, lane, taken)
+        painter.restore()
 
     def _draw_support_words(self, painter: QPainter, lane: Lane, taken: list[tuple[float, float]]) -> None:
         top, ink = self.g.lane - self.theme.px(19), QColor(self.theme.colours.ink_quiet)
@@ -225,8 +240,6 @@ class LanePainter:
             pennant(painter, theme, item.tier, placed.x, foot, theme.px(16), item.settled)
         elif item.kind is LaneKind.WINDOW:
             self._draw_window(painter, placed, taken)
-        else:
-            self._draw_setting(painter, placed, taken)
 
     def _draw_window(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
         g, theme = self.g, self.theme
@@ -253,7 +266,15 @@ class LanePainter:
         painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
         painter.setFont(theme.font(theme.type.caption))
         left, top = placed.x + theme.px(5), g.lane - theme.px(19)
-        self._words(painter, placed.item.word, left, top, QColor(c.ink_quiet), taken)
+        self._words(painter, placed.item.word, self._before_now(placed, left), top, QColor(c.ink_quiet), taken)
+
+    def _before_now(self, placed: Placed, left: float) -> float:
+        """Words of a setting end before the now line: right of it they would tell of the time to come."""
+        now, g, gap = self.spec.now, self.g, self.theme.px(6)
+        if now is None or placed.item.at > now:
+            return left
+        width = QFontMetricsF(self.theme.font(self.theme.type.caption)).horizontalAdvance(placed.item.word)
+        return min(left, g.x(now) - gap - width)
 
     def _words(
         self, painter: QPainter, word: str, left: float, top: float, ink: QColor, taken: list[tuple[float, float]]

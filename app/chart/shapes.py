@@ -294,6 +294,8 @@ class Lane:
     due_late: bool = False
     first_word: str = ""
     closed: bool = False
+    off_mask: bool = False
+    """The mask is off: no setting is in force."""
     sentence: str = ""
     payload: Any = None
 

@@ -104,10 +104,10 @@ class LaneWords:
             told = translate("ward", "{indication}, from {time}").format(
                 indication=told, time=clock(s.since, self.zone)
             )
-        if off_mask_word(f, self.zone):
-            return translate("ward", "{indication}, mask off").format(indication=told)
         elif ambiguous:
             told = f"{told}, {f.episode}"
+        if off_mask_word(f, self.zone):
+            return translate("ward", "{indication}, mask off").format(indication=told)
         return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
 
     def _state_word(self, f: EpisodeFigures, gas: GasFigure | None) -> str:
@@ -146,7 +146,8 @@ class LaneWords:
         setting = support_now(s.mode, s.ipap_cmH2O, s.epap_cmH2O, s.fio2, s.o2_flow_L_per_min)
         off = off_mask_word(f, self.zone)
         if off:
-            setting = translate("ward", "{off} (before: {setting})").format(off=off, setting=setting) if setting else off
+            before = translate("ward", "{off} (before: {setting})").format(off=off, setting=setting)
+            setting = before if setting else off
         parts = [f.label, self._indication(f), "" if is_ended(f) else setting]
         gas = _latest_gas(f)
         if gas is not None:

@@ -5,8 +5,9 @@ from dataclasses import replace
 import pytest
 from PySide6.QtCore import QPoint, Qt
 
+from app.chart.lane_painter import LanePainter
 from app.chart.lanes import WardLanes
-from app.chart.shapes import LaneKind
+from app.chart.shapes import LaneItem, LaneKind
 from app.theme import DARK, LIGHT
 from tests.app.chart.conftest import at
 
@@ -136,3 +137,46 @@ def test_the_clock_keeps_room_at_any_text_size(qtbot, lanes_spec, scale, width):
     view.resize(width, 800)
     view.show()
     assert view._geometry.clock >= 0.35 * width
+
+
+class Heard:
+    """Stands for a painter that writes down which words were drawn, where they begin and end."""
+
+    def __init__(self, painter_class, monkeypatch):
+        self.words = []
+        drawn = painter_class._words
+
+        def words(made, painter, word, left, top, ink, taken):
+            before = len(taken)
+            drawn(made, painter, word, left, top, ink, taken)
+            self.words += [(word, *taken[-1])] if len(taken) > before else []
+
+        monkeypatch.setattr(painter_class, "_words", words)
+
+
+def settings_of(spec, *items):
+    made = tuple(LaneItem(LaneKind.SETTING, at(m), f"{word} at {m}", word=word) for m, word in items)
+    return replace(spec, lanes=(replace(spec.lanes[0], items=made, support=()),))
+
+
+def test_the_newest_setting_wins_where_words_collide(qtbot, ward, lanes_spec, monkeypatch):
+    heard = Heard(LanePainter, monkeypatch)
+    ward.set_spec(settings_of(replace(lanes_spec, now=None), (100, "20/5 30 %"), (104, "24/5 35 %")))
+    ward.grab()
+    assert [word for word, *_ in heard.words] == ["24/5 35 %"]
+
+
+def test_words_of_a_setting_never_stand_right_of_the_now_line(qtbot, ward, lanes_spec, monkeypatch):
+    heard = Heard(LanePainter, monkeypatch)
+    ward.set_spec(settings_of(replace(lanes_spec, now=at(200)), (20, "12/5"), (198, "24/10 25 %")))
+    ward.grab()
+    assert {word for word, *_ in heard.words} == {"12/5", "24/10 25 %"}
+    assert all(right < ward._geometry.x(at(200)) for *_, right in heard.words)
+
+
+def test_settings_from_before_the_mask_came_off_are_dimmed(qtbot, ward, lanes_spec):
+    spec = settings_of(lanes_spec, (100, "20/5 30 %"))
+    ward.set_spec(spec)
+    before = ward.grab().toImage()
+    ward.set_spec(replace(spec, lanes=(replace(spec.lanes[0], off_mask=True),)))
+    assert ward.grab().toImage() != before

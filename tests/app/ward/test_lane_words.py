@@ -1,5 +1,7 @@
 """A lane says what the figures say: state, verdict, flags, due, every item in a whole sentence."""
 
+from dataclasses import replace
+
 import pytest
 
 from app.chart.shapes import LaneKind
@@ -7,6 +9,7 @@ from app.course import course_of
 from app.theme import GasState, Tier, Verdict
 from app.ward.lane_words import LaneWords, OnWard, short_flags
 from app.words import Reader
+from core.judgement.shapes import NowFigure
 from tests.support.invented_ward import (
     NOW,
     ZONE,
@@ -19,6 +22,7 @@ from tests.support.invented_ward import (
     record_of,
     ward,
 )
+from tests.support.sample_ward import sample_ward
 
 WORDS = LaneWords(Reader(ZONE, "mmHg"), NOW)
 
@@ -84,6 +88,28 @@ def test_in_kilopascal():
 def test_an_open_window_is_drawn_and_a_judged_one_is_not():
     assert items(lane_of(on_cpap()), LaneKind.WINDOW)[0].end == at("06:05")
     assert items(lane_of(improving()), LaneKind.WINDOW) == []
+
+
+def test_off_the_mask_stands_in_the_place_of_the_state_and_dims_the_settings():
+    bed = failing()
+    off = replace(bed.figures, now=NowFigure(off_mask_since=at("05:21")))
+    lane = WORDS.lane(OnWard(off, course_of(bed.record, NOW)), first=False)
+    assert lane.state_word == "mask off since 05:21; severe"
+    assert lane.off_mask
+    assert lane.subtitle.endswith("mask off")
+    assert "mask off since 05:21 (before: BPAP-ST" in lane.sentence
+    assert not lane_of(failing()).off_mask
+
+
+def test_a_gain_that_was_lost_stands_beside_better_and_in_the_mark_of_its_gas():
+    bed = next(f for f in sample_ward() if f.label == "Bed 5")
+    lane = WORDS.lane(OnWard(bed, course_of(failing().record, NOW)), first=False)
+    assert (lane.verdict_word, lane.verdict) == ("better, gain lost", Verdict.MIXED)
+    assert "better, gain lost. since the start: better" in lane.sentence
+    gas = items(lane, LaneKind.GAS)[-1]
+    assert gas.verdict is Verdict.MIXED
+    assert "better, gain lost, " in gas.sentence
+    assert gas.sentence.endswith("since the start: better")
 
 
 def test_an_ended_lane_is_closed_and_owes_nothing():

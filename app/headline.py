@@ -1,0 +1,117 @@
+"""How an episode stands in the words of its heading: its state, the verdict, and what must not go without them.
+
+A gain that was lost and a sum since the start that says otherwise stand beside the verdict wherever it stands:
+"better" alone would hide a relapse.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from app.formats import clock, gas_pressure
+from app.phrases import state_of, translate
+from app.theme import Verdict, state_word, verdict_of, verdict_word
+from core.judgement.now import headline_response
+from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
+
+_CLEAR = (Verdict.BETTER, Verdict.WORSE, Verdict.MIXED, Verdict.OVER_CORRECTION)
+
+
+@dataclass(frozen=True, slots=True)
+class Headline:
+    """The newest verdict; `since_start` against the baseline of the start, None where that is not known."""
+
+    verdict: Verdict
+    gain_lost: bool = False
+    since_start: Verdict | None = None
+
+    @property
+    def word(self) -> str:
+        """The verdict, and whether a gain was lost: better, gain lost."""
+        return verdict_with_loss(self.verdict, lost=self.gain_lost)
+
+    @property
+    def short(self) -> str:
+        """For a narrow column: no clear change, worse since start."""
+        if self.since_start not in _CLEAR or self.since_start is self.verdict:
+            return self.word
+        against = verdict_word(self.since_start)
+        return translate("headline", "{verdict}, {against} since start").format(verdict=self.word, against=against)
+
+    @property
+    def sign(self) -> Verdict:
+        """The sign to draw: never that of the verdict alone where it would hide something worse."""
+        return sign_of(self.verdict, lost=self.gain_lost, since_start=self.since_start)
+
+
+def headline(f: EpisodeFigures) -> Headline | None:
+    """The verdict that stands for the episode now; None before any change."""
+    told = headline_response(f.responses)
+    if told is None:
+        return None
+    judged = judged_by(told)
+    lost = told.gain_lost or f.now.gain_lost or f.now.since_start_gain_lost
+    against = f.now.since_start or (judged.since_start.verdict if judged is not None else None)
+    lost = lost or (judged is not None and judged.since_start.gain_lost)
+    return Headline(verdict_of(told.headline), lost, verdict_of(against) if against is not None else None)
+
+
+def judged_by(response: ResponseFigure) -> JudgedGas | None:
+    """The gas that a headline rests on."""
+    return next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)
+
+
+def lost_gain(response: ResponseFigure) -> bool:
+    """Whether the gas of the headline, or a later one, had lost what was gained."""
+    judged = judged_by(response)
+    return response.gain_lost or (judged is not None and judged.since_start.gain_lost)
+
+
+def verdict_with_loss(verdict: Verdict, *, lost: bool) -> str:
+    """A verdict in words, with the gain that was lost."""
+    word = verdict_word(verdict)
+    return translate("headline", "{verdict}, gain lost").format(verdict=word) if lost else word
+
+
+def sign_of(verdict: Verdict, *, lost: bool, since_start: Verdict | None = None) -> Verdict:
+    """A better with its gain lost is drawn as mixed, no clear change that adds up to worse as worse."""
+    if verdict is Verdict.NO_CLEAR_CHANGE and since_start is Verdict.WORSE:
+        return Verdict.WORSE
+    if verdict in (Verdict.BETTER, Verdict.NO_CLEAR_CHANGE) and (lost or since_start is Verdict.WORSE):
+        return Verdict.MIXED
+    return verdict
+
+
+def ever_acidotic(f: EpisodeFigures) -> bool:
+    """Whether there was an acidosis that could have resolved."""
+    return f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)
+
+
+def gas_state_word(f: EpisodeFigures, gas: GasFigure) -> str:
+    """The state of a gas; what never was acidotic has not resolved."""
+    if gas.state == "resolved" and not ever_acidotic(f):
+        return translate("headline", "not acidotic")
+    return state_word(state_of(gas.state))
+
+
+def pf_word(f: EpisodeFigures, gas_unit: str) -> str:
+    """The newest P/F where oxygen is what fails, "" elsewhere; mmHg is said nowhere, as the trade does."""
+    if not f.now.oxygen_failure or f.now.pf_mmHg is None:
+        return ""
+    return f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit).removesuffix(' mmHg')}"
+
+
+def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str) -> str:
+    """The state in a few words, the oxygen first where it is what fails: P/F 107, not acidotic."""
+    state = gas_state_word(f, gas)
+    if gas.off_support:
+        state = translate("headline", "{state} off support").format(state=state)
+    return ", ".join(x for x in (pf_word(f, gas_unit), state) if x)
+
+
+def off_mask_word(f: EpisodeFigures, zone: str) -> str:
+    """That the mask is off, since when; "" where it is on or support has ended."""
+    since = f.now.off_mask_since or f.support.break_since
+    if since is None or f.support.ended_at is not None:
+        return ""
+    return translate("headline", "mask off since {time}").format(time=clock(since, zone))

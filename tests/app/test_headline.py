@@ -1,0 +1,70 @@
+"""What must not go without a verdict or a state: a gain lost, the sum since the start, oxygen, a mask that is off."""
+
+from dataclasses import replace
+
+import pytest
+
+from app.headline import Headline, gas_state_word, headline, off_mask_word, sign_of, state_now
+from app.theme import Verdict
+from core.judgement.shapes import EpisodeFigures, GasFigure, NowFigure, ResponseFigure, SupportFigure
+from tests.support.sample_ward import sample_ward
+
+
+def bed(label: str) -> EpisodeFigures:
+    return next(f for f in sample_ward() if f.label == label)
+
+
+@pytest.mark.parametrize(
+    ("label", "short", "sign"),
+    [
+        ("Bed 5", "better, gain lost", Verdict.MIXED),
+        ("Bed 4", "no clear change, worse since start", Verdict.WORSE),
+        ("Bed 2", "no clear change, better since start", Verdict.NO_CLEAR_CHANGE),
+        ("Bay A 1", "worse, gain lost", Verdict.WORSE),
+        ("Bed 3", "better", Verdict.BETTER),
+    ],
+)
+def test_the_sample_night(label: str, short: str, sign: Verdict) -> None:
+    told = headline(bed(label))
+    assert told is not None
+    assert (told.short, told.sign) == (short, sign)
+
+
+def test_no_sign_of_better_stands_over_a_relapse() -> None:
+    for verdict in Verdict:
+        for since in (None, *Verdict):
+            assert sign_of(verdict, lost=True, since_start=since) is not Verdict.BETTER
+        assert sign_of(verdict, lost=False, since_start=Verdict.WORSE) is not Verdict.BETTER
+        assert sign_of(verdict, lost=False) is verdict
+
+
+def test_what_waits_still_says_the_sum_since_the_start() -> None:
+    waiting = EpisodeFigures("E", 9, responses=(ResponseFigure(5, "change", 5),), now=NowFigure(since_start="worse"))
+    told = headline(waiting)
+    assert told == Headline(Verdict.NOT_YET_KNOWN, gain_lost=False, since_start=Verdict.WORSE)
+    assert told.short == "not yet known, worse since start"
+    assert headline(EpisodeFigures("E", 9)) is None
+
+
+def test_what_never_was_acidotic_has_not_resolved() -> None:
+    f = bed("Bay B 5")
+    assert gas_state_word(f, f.gases[-1]) == "not acidotic"
+    assert state_now(f, f.gases[-1], "mmHg") == "not acidotic"
+    resolved = bed("Bed 3")
+    assert gas_state_word(resolved, resolved.gases[-1]) == "resolved"
+
+
+def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
+    f = bed("Bay A 1")
+    assert state_now(f, f.gases[-1], "mmHg") == "P/F 107, not acidotic"
+    assert state_now(f, f.gases[-1], "kPa") == "P/F 14.3 kPa, not acidotic"
+    off = replace(f.gases[-1], off_support=True, state="acidotic")
+    assert state_now(f, off, "mmHg") == "P/F 107, acidotic off support"
+
+
+def test_the_mask_off_and_when() -> None:
+    at = 5 * 3_600_000_000 + 31 * 60_000_000
+    f = EpisodeFigures("E", at, now=NowFigure(off_mask_since=at), gases=(GasFigure(1, "arterial", state="severe"),))
+    assert off_mask_word(f, "UTC") == "mask off since 05:31"
+    assert off_mask_word(replace(f, support=SupportFigure(ended_at=at)), "UTC") == ""
+    assert off_mask_word(replace(f, now=NowFigure()), "UTC") == ""
