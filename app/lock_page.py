@@ -58,6 +58,7 @@ class LockPage(QWidget):
         self._form.addRow(self.tr("Initials"), self.initials)
         self._form.addRow(self.tr("PIN"), self.secret)
         self.initials.setAccessibleName(self.tr("Initials"))
+        self.secret.setAccessibleName(self.tr("PIN"))
         self._column = QVBoxLayout(self._card)
         for part in (self.title, self.told):
             self._column.addWidget(part)

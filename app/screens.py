@@ -16,6 +16,7 @@ from PySide6.QtWidgets import QApplication, QDialog, QWidget
 from app.clock import REAL, still
 from app.episode.figure_list import FoldHead
 from app.episode_view import EpisodeView
+from app.forms.samples import fill
 from app.preferences import Preferences
 from app.runner import Runner
 from app.session import Session, SessionModel
@@ -32,6 +33,8 @@ DIALOGS: Final = (
     ("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
     ("policy", "policy"),
     ("table", "table"), ("help", "help"), ("about", "about"),
+    ("settings-form", "settings_form"), ("gas-form", "gas_form"), ("vitals-form", "vitals_form"),
+    ("end-support", "end_episode"), ("problem-report", "report_problem"),
 )  # fmt: skip
 _PATIENCE_S: Final = 60.0
 
@@ -186,6 +189,8 @@ def _dialogs(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
             (w for w in window.findChildren(QDialog) if w.isVisible()), None
         )
         if dialog is not None:
+            fill(dialog)
+            _settle(window)
             yield name, dialog
             _pass_events()
 

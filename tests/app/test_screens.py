@@ -9,7 +9,7 @@ EXPECTED = {
     "first", "ward", "strip", "episode", "episode-crosshair", "compare", "handover", "explain", "panels",
     "figures-folded", "figures-gas", "figures-oxygenation", "figures-breathing", "explain-doubt", "explain-none",
     "explain-class", "explain-score", "new-episode", "correct", "map", "statistics", "as-known", "table", "help",
-    "about", "policy",
+    "about", "policy", "settings-form", "gas-form", "vitals-form", "end-support", "problem-report",
 }  # fmt: skip
 
 

@@ -5,11 +5,13 @@ import re
 from pathlib import Path
 
 APP = Path(__file__).parents[2] / "app"
-ROOMS = ("deeds", "dialogs", "episode", "ward", "strip", "compare", "handover")
+ROOMS = ("deeds", "dialogs", "episode", "ward", "strip", "compare", "handover", "forms", "intake_window",
+         "statistics")  # fmt: skip
 SETTERS = {
     "setText", "setPlaceholderText", "setToolTip", "setWindowTitle", "setAccessibleName", "setAccessibleDescription",
     "setStatusTip", "setWhatsThis", "setTitle", "addItem", "addTab", "setHorizontalHeaderLabels", "setHeaderLabels",
-    "say", "QLabel", "QPushButton", "QCheckBox", "QToolButton", "QGroupBox", "refuse", "field",
+    "say", "QLabel", "QPushButton", "QCheckBox", "QToolButton", "QGroupBox", "refuse", "field", "set_name",
+    "Cell", "card", "add_line",
 }  # fmt: skip
 NAMES = {"Luffmark", "luffmark", "-"}
 WORDS = re.compile(r"[A-Za-z]{2,}")
