@@ -13,8 +13,9 @@ from PySide6.QtCore import QCoreApplication
 from app.figure_rows import doubts_of
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
+from app.headline import lost_gain, verdict_with_loss
 from app.phrases import gas_name, gas_words
-from app.theme import Tier, tier_word, verdict_of, verdict_word
+from app.theme import Tier, tier_word, verdict_of
 from app.words import Reader, sentence
 from app.words.template import quantity_name
 from core.judgement.gas_reading import read
@@ -138,7 +139,7 @@ class Explainer:
             inputs.append((translate("explain", "Gas judged"), self._judged(g), clock(g.at, zone)))
         messages = (*(m for g in response.gases for m in g.why), *response.why)
         why = tuple(dict.fromkeys(sentence(m, self.reader) for m in messages))
-        verdict = verdict_word(verdict_of(response.headline))
+        verdict = verdict_with_loss(verdict_of(response.headline), lost=lost_gain(response))
         title = translate("explain", "Verdict: {verdict}").format(verdict=verdict)
         return Explanation(title, self._response_rules(), tuple(inputs), why, noise.ph.source, noise.ph.sure)
 
@@ -149,7 +150,7 @@ class Explainer:
         if gas.delta_paco2_mmHg is not None:
             told.append(f"PaCO2 {gas_pressure(gas.delta_paco2_mmHg, self.reader.gas_unit, sign=True)}")
         if gas.verdict is not None:
-            told.append(verdict_word(verdict_of(gas.verdict)))
+            told.append(verdict_with_loss(verdict_of(gas.verdict), lost=gas.since_start.gain_lost))
         return ", ".join(told)
 
     def _response_rules(self) -> tuple[str, str]:

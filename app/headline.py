@@ -94,6 +94,13 @@ def gas_state_word(f: EpisodeFigures, gas: GasFigure) -> str:
     return state_word(state_of(gas.state))
 
 
+def response_state_word(f: EpisodeFigures, response: ResponseFigure) -> str:
+    """The state of the gas that a headline rests on."""
+    if response.state == "resolved" and not ever_acidotic(f):
+        return translate("headline", "not acidotic")
+    return state_word(state_of(response.state))
+
+
 def pf_word(f: EpisodeFigures, gas_unit: str) -> str:
     """The newest P/F where oxygen is what fails, "" elsewhere; mmHg is said nowhere, as the trade does."""
     if not f.now.oxygen_failure or f.now.pf_mmHg is None:

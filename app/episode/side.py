@@ -20,14 +20,16 @@ from app.figure_rows import RowMaker
 from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, hours, minutes, since, trimmed
+from app.headline import Headline, ever_acidotic, gas_state_word, headline, off_mask_word, pf_word
 from app.phrases import gas_words, state_of, support_now, translate
 from app.signs import Sign
-from app.theme import Theme, Tier, state_word, tier_word, verdict_of, verdict_word
+from app.theme import Theme, Tier, Verdict, tier_word, verdict_word
 from app.ward.lane_words import anchor_name, open_flags
 from app.ward.ordering import OPEN_DUE
 from app.words import Reader, sentence
+from core.judgement.now import headline_response
 from core.judgement.policy import Policy
-from core.judgement.shapes import EpisodeFigures, FlagFigure, ResponseFigure, ScoreFigure
+from core.judgement.shapes import EpisodeFigures, FlagFigure, GasFigure, ResponseFigure, ScoreFigure
 from core.record.instant import MINUTE
 
 SCORE_NAMES = {
@@ -156,49 +158,58 @@ class _Facts:
         if gas is None:
             yield self._quiet(translate("side", "No gas yet"))
         else:
-            state = state_of(gas.state)
             age = since(gas.at, f.as_of)
             yield Fact(
                 self.theme,
-                f"{state_word(state)}",
+                self._state(gas),
                 (gas_words(gas, self.reader.gas_unit), f"{clock(gas.at, zone)}, {age}"),
-                sign=Sign(self.theme, state),
+                sign=Sign(self.theme, state_of(gas.state)),
                 explanation=self.explainer.gas(gas),
             )
-        response = self._telling()
-        if response is not None:
-            yield self._verdict(response)
+        response, told = headline_response(f.responses), headline(f)
+        if response is not None and told is not None:
+            yield self._verdict(response, told)
+            if told.since_start is not None and not self._says_the_same(response, told):
+                yield self._since_start(response, told.since_start)
         yield Fact(self.theme, self._support(), tuple(self._mask_time()), explanation=self._hours())
+
+    def _state(self, gas: GasFigure) -> str:
+        state = gas_state_word(self.f, gas)
+        if gas.off_support:
+            state = translate("side", "{state}, drawn off support").format(state=state)
+        pf = pf_word(self.f, self.reader.gas_unit)
+        if pf and not ever_acidotic(self.f):  # oxygen alone is what failed
+            return translate("side", "Hypoxaemic: {pf}, {state}").format(pf=pf, state=state)
+        return f"{pf}, {state}" if pf else state
+
+    @staticmethod
+    def _says_the_same(response: ResponseFigure, told: Headline) -> bool:
+        """The start's own verdict is its sum already."""
+        return response.anchor == "start" and told.since_start is told.verdict
+
+    def _since_start(self, response: ResponseFigure, against: Verdict) -> Fact:
+        """As strong as the headline: steps too small to tell may add up."""
+        title = translate("side", "since the start: {verdict}").format(verdict=verdict_word(against))
+        sign = Sign(self.theme, against)
+        return Fact(self.theme, title, sign=sign, explanation=self.explainer.response(response))
 
     def _hours(self) -> Explanation:
         """How the hours on the mask were counted."""
         row = next(mask_rows(self.f, RowMaker(self.reader, {})))
         return explain_row(row, self.reader, self.f.as_of)
 
-    def _telling(self) -> ResponseFigure | None:
-        told = [r for r in self.f.responses if r.headline_gas_at is not None]
-        if told:
-            return max(told, key=lambda r: (r.headline_gas_at or 0, r.anchor_at))
-        return self.f.responses[-1] if self.f.responses else None
-
-    def _verdict(self, response: ResponseFigure) -> Fact:
-        verdict = verdict_of(response.headline)
+    def _verdict(self, response: ResponseFigure, told: Headline) -> Fact:
         lines = [
             translate("side", "after {anchor} at {time}").format(
                 anchor=anchor_name(response), time=clock(response.anchor_at, self.reader.zone)
             )
         ]
-        latest = next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)
-        if latest is not None and latest.since_start.verdict is not None:
-            against = verdict_word(verdict_of(latest.since_start.verdict))
-            text = translate("side", "since the start: {verdict}").format(verdict=against)
-            lines.append(text + (translate("side", ", gain lost") if latest.since_start.gain_lost else ""))
         lines += [sentence(m, self.reader) for m in response.why[:1]]
         return Fact(
             self.theme,
-            verdict_word(verdict),
+            told.word,
             lines,
-            sign=Sign(self.theme, verdict),
+            sign=Sign(self.theme, told.sign),
             explanation=self.explainer.response(response),
         )
 
@@ -206,6 +217,12 @@ class _Facts:
         s = self.f.support
         if s.ended_at is not None:
             return translate("side", "Support ended {time}").format(time=clock(s.ended_at, self.reader.zone))
+        if off := off_mask_word(self.f, self.reader.zone):
+            return off[:1].upper() + off[1:]
+        return self._settings()
+
+    def _settings(self) -> str:
+        s = self.f.support
         text = support_now(s.mode, s.ipap_cmH2O, s.epap_cmH2O, s.fio2, s.o2_flow_L_per_min)
         if s.fio2 is None and s.o2_flow_L_per_min is not None:
             text += translate("side", ", FiO2 not known")
@@ -213,13 +230,11 @@ class _Facts:
 
     def _mask_time(self) -> Iterator[str]:
         s = self.f.support
-        if s.pressure_support_cmH2O is not None and s.ipap_cmH2O is not None:
+        if off_mask_word(self.f, self.reader.zone):
+            yield translate("side", "before it came off: {settings}").format(settings=self._settings())
+        elif s.pressure_support_cmH2O is not None and s.ipap_cmH2O is not None:
             yield translate("side", "pressure support {ps} cmH2O").format(
                 ps=trimmed(s.pressure_support_cmH2O)
-            )
-        if s.break_since is not None:
-            yield translate("side", "off the mask since {time}").format(
-                time=clock(s.break_since, self.reader.zone)
             )
         if s.hours_on_mask is not None:
             text = translate("side", "{hours} on the mask").format(hours=hours(s.hours_on_mask))

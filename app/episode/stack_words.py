@@ -12,10 +12,11 @@ from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.episode_shown import EpisodeOnScreen
 from app.formats import clock
+from app.headline import lost_gain, response_state_word, sign_of, verdict_with_loss
 from app.later_words import later_word
 from app.panels import Panel
 from app.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
-from app.theme import state_word, verdict_of, verdict_word
+from app.theme import verdict_of
 from app.ward.lane_words import anchor_name
 from core.judgement.shapes import ResponseFigure
 from core.record.channels import Group, by_group
@@ -126,15 +127,15 @@ def _brackets(on: EpisodeOnScreen) -> Iterator[Bracket]:
         if r.superseded_at is not None and r.superseded_at <= r.window_from:
             continue  # its window never opened: a later change took its place
         end = r.window_to if r.superseded_at is None else min(r.window_to, r.superseded_at)
-        verdict = verdict_of(r.headline)
+        verdict, lost = verdict_of(r.headline), lost_gain(r)
         yield Bracket(
             r.anchor_at,
             r.window_from,
             end,
-            verdict,
-            verdict_word(verdict),
+            sign_of(verdict, lost=lost),
+            verdict_with_loss(verdict, lost=lost),
             None if r.state is None else state_of(r.state),
-            "" if r.state is None else state_word(state_of(r.state)),
+            "" if r.state is None else response_state_word(on.figures, r),
             still_open,
             r,
         )
@@ -223,6 +224,6 @@ def summary_of(on: EpisodeOnScreen) -> str:
 
 
 def _response_words(r: ResponseFigure, zone: str) -> str:
-    verdict = verdict_word(verdict_of(r.headline))
+    verdict = verdict_with_loss(verdict_of(r.headline), lost=lost_gain(r))
     text = translate("stack", "After {anchor} at {time}: {verdict}.")
     return text.format(anchor=anchor_name(r), time=clock(r.anchor_at, zone), verdict=verdict)

@@ -1,0 +1,62 @@
+"""The side column's heading: what a relapse, a sum since the start, failing oxygen and a mask off look like there."""
+
+from dataclasses import replace
+
+import pytest
+from PySide6.QtWidgets import QLabel
+
+from app.episode.side import SideColumn
+from app.theme import LIGHT
+from app.words import Reader
+from core.judgement.policy import shipped_policy
+from core.judgement.shapes import EpisodeFigures
+from tests.support.sample_ward import sample_ward
+
+READER = Reader("Europe/London", "mmHg")
+
+
+def bed(label: str) -> EpisodeFigures:
+    return next(f for f in sample_ward() if f.label == label)
+
+
+@pytest.fixture
+def told(qtbot):
+    """The texts of the facts that stand before the flags, a list for each."""
+
+    def texts(figures: EpisodeFigures) -> list[list[str]]:
+        column = SideColumn(LIGHT)
+        qtbot.addWidget(column)
+        column.show_figures(figures, shipped_policy(), READER)
+        card = column.facts()[0].parentWidget()
+        facts = [f for f in column.facts() if f.parentWidget() is card]
+        return [[label.text() for label in f.findChildren(QLabel)] for f in facts]
+
+    return texts
+
+
+def titles(texts: list[list[str]]) -> list[str]:
+    return [t[0] for t in texts]
+
+
+def test_a_lost_gain_stands_with_the_verdict(told):
+    assert "better, gain lost" in titles(told(bed("Bed 5")))
+
+
+@pytest.mark.parametrize(("label", "against"), [("Bed 4", "worse"), ("Bed 2", "better")])
+def test_the_sum_since_the_start_is_a_fact_of_its_own(told, label, against):
+    found = titles(told(bed(label)))
+    assert found.index(f"since the start: {against}") == found.index("no clear change") + 1
+
+
+def test_hypoxaemia_comes_first_and_nothing_never_acidotic_is_resolved(told):
+    assert titles(told(bed("Bay A 1")))[0] == "Hypoxaemic: P/F 107, not acidotic"
+    assert titles(told(bed("Bay B 5")))[0] == "not acidotic"
+    assert titles(told(bed("Bed 3")))[0] == "P/F 273, resolved"
+
+
+def test_off_the_mask_comes_before_the_settings_it_had(told):
+    f = bed("Bed 4")
+    off = replace(f, now=replace(f.now, off_mask_since=f.as_of))
+    last = told(off)[-1]
+    assert last[0] == "Mask off since 05:30"
+    assert any(line.startswith("before it came off: BPAP-ST") for line in last)
