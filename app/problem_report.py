@@ -44,7 +44,7 @@ def report(preferences: Preferences, opened: Open | None, log_folder: Path, wind
         "What happened instead:",
         "",
         *(f"{name} {_version(name)}" for name in _PACKAGES),
-        f"Python {platform.python_version()}, {platform.system()} {platform.release()}, {platform.machine()}",
+        f"Python {platform.python_version()}, {_system()}, {platform.machine()}",
         f"Look {preferences.theme}, text {preferences.text_scale:.0%}, pressures in {preferences.gas_unit}",
         f"Window {window[0]} x {window[1]}",
     ]
@@ -54,13 +54,19 @@ def report(preferences: Preferences, opened: Open | None, log_folder: Path, wind
         kinds = [word for word, held in (("sample shift", opened.is_demo), ("read-only", opened.read_only),
                                          ("looking back", opened.looks_back)) if held]  # fmt: skip
         lines += [
-            f"Store with {opened.episodes} episodes, {opened.head} batches{''.join(f', {k}' for k in kinds)}",
+            f"Store with {opened.episodes} episodes, ledger at {opened.head}{''.join(f', {k}' for k in kinds)}",
             f"Page {opened.page}",
         ]
         if opened.notices:
             lines.append(f"Notices: {', '.join(opened.notices)}")
     log = newest_lines(log_folder, LINES)
     return "\n".join([*lines, "", f"Newest {len(log)} lines of the log:", *log, ""])
+
+
+def _system() -> str:
+    """The system; a kernel's own name can name a computer, so it stays out where releases are named freely."""
+    system = platform.system()
+    return system if system == "Linux" else f"{system} {platform.release()}"
 
 
 def _version(package: str) -> str:

@@ -246,7 +246,8 @@ class BeginForm(PreviewedForm):
             self.numbers[key].box.starts_at = limit.value
             self.cells[key].tell(self.tr("{value:g} % if left empty").format(value=limit.value))
         kind = self.tr("hypercapnic risk") if risk else self.tr("no hypercapnic risk known")
-        self.cells["indication"].tell(f"{kind}; {low.source.partition(';')[0]}" if self.indication.currentData() else kind)
+        source = low.source.partition(";")[0]
+        self.cells["indication"].tell(f"{kind}; {source}" if self.indication.currentData() else kind)
         self.cells["ceiling_of_care"].tell(self.tr("How far support goes. Apart from resuscitation."))
         self.cells["resuscitation"].tell(self.tr("What is done if the heart stops."))
         values = {

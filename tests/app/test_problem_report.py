@@ -80,7 +80,7 @@ def test_a_folder_that_takes_no_writing_stops_nothing(tmp_path):
 def test_a_report_is_made_of_what_the_program_knows(tmp_path):
     kept = Preferences(person="ZB", recent_stores=(f"/home/{SECRET}/ward.luffmark",))
     text = report(kept, Open(9, 120, True, False, False, "ward", ("store.read_only",)), tmp_path, (1280, 800))
-    assert "Store with 9 episodes, 120 batches, read-only" in text
+    assert "Store with 9 episodes, ledger at 120, read-only" in text
     assert "Page ward" in text
     assert SECRET not in text
     assert "ZB" not in text
