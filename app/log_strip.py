@@ -1,7 +1,7 @@
 """The log strip: one line, always one key away. It says before Enter exactly what will be recorded, and for whom.
 
-The preview and the recording read the line by the same operation, so that they cannot differ. Enter while a
-preview is still awaited records once it has come and asks nothing.
+The preview and the recording read the line by the same operation, so that they cannot differ. Enter counts only
+once the preview of that very text is shown: nothing is recorded unseen.
 """
 
 from __future__ import annotations
@@ -30,7 +30,9 @@ from app.readers import reader_at
 from app.session import SessionModel
 from app.strip.completion import completed, completions
 from app.strip.line_field import LineField
-from app.strip.preview_words import PreviewWords, preview_words
+from app.strip.preview_words import preview_words, recorded_words
+from app.strip.said_html import completion_html, marked, preview_html, quiet
+from app.strip.settle_time import SettleTime
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.record.episode import Episode
@@ -65,7 +67,10 @@ class LogStrip(QFrame):
         self._label, self._gas_unit, self._zone = "", "mmHg", "UTC"
         self.state = State.IDLE
         self._preview: Preview | None = None
-        self._enter_pending = False
+        self._awaited: str | None = None
+        self._pressed_early = False
+        self.settle = SettleTime()
+        self._labels: dict[str, str] = {}
         self._undo: list[Recorded] = []
         self._off_mask = False
         self._closed = ""
@@ -154,6 +159,8 @@ class LogStrip(QFrame):
             self._record.key if self._record is not None else None
         )
         self._record, self._label, self._zone, self._gas_unit = record, label, zone, gas_unit
+        if record is not None:
+            self._labels[record.key] = label
         self.whom.setText(label or self.tr("No patient"))
         word = self.tr("Mask on") if off_mask else self.tr("Mask off")
         self.buttons["mask"].setText(f"{word}  F7")
@@ -214,17 +221,22 @@ class LogStrip(QFrame):
 
     def _clear(self) -> None:
         self.line.clear()
-        self._preview, self._enter_pending = None, False
+        self._forget_preview()
         self._become(State.IDLE, self._hint())
+
+    def _forget_preview(self) -> None:
+        """No preview is shown or awaited: an answer that still comes is of no use."""
+        self._preview, self._awaited, self._pressed_early = None, None, False
+        self.settle.clear()
 
     # preview
 
     def _edited(self, text: str) -> None:
-        self._preview, self._enter_pending = None, False
+        self._forget_preview()
         if not text.strip() or self._record is None:
             self._become(State.IDLE, self._hint())
             return
-        self.state = State.AWAITED
+        self.state, self._awaited = State.AWAITED, text
         self._model.ask(
             entry.preview,
             self._request(False),
@@ -235,30 +247,34 @@ class LogStrip(QFrame):
 
     def _request(self, confirmed: bool) -> LineRequest:
         assert self._record is not None
-        return LineRequest(self._record.key, self.line.text(), self._zone, confirmed)
+        return LineRequest(
+            self._record.key, self.line.text(), self._zone, confirmed, gas_unit=self._gas_unit
+        )
 
     def _previewed(self, outcome: Outcome[Preview]) -> None:
+        if self._awaited is None or self._awaited != self.line.text():
+            return
+        self._awaited = None
         if any(r.channel.key == "told" and not r.words for r in outcome.value.line.readings):
-            self._enter_pending = False
             ask = self.tr("Type whom, a colon, and what they answered, e.g. told registrar: comes now.")
-            self._become(State.REFUSED, self._mark(self.tr("Told whom?"), ask))
+            self._become(State.REFUSED, marked(self.tr("Told whom?"), ask))
             return
         self._preview = outcome.value
         words = preview_words(outcome.value, self._record, self._model.session.now(), self._reader())
-        if self._enter_pending and not words.questions:
-            self._record_now(confirmed=False)
-            return
-        self._enter_pending = False
-        self._become(State.READY, self._preview_html(words))
+        if self._pressed_early:
+            self.settle.start()  # a second early press was meant for the line, not for what it has become
+        self._become(State.READY, preview_html(words, self._theme.colours.ink_quiet))
 
     def _refused(self, failure: Failure) -> None:
-        self._enter_pending = False
+        if self._awaited is None or self._awaited != self.line.text():
+            return
+        self._awaited = None
         options = completions(self.line.text(), self.line.cursorPosition())
         if options and failure.message.key in ("line.word_unknown", "line.value_missing", "value.missing"):
-            self._become(State.REFUSED, self._completion_html(options))
+            self._become(State.REFUSED, completion_html(options, self._theme.colours.ink_quiet))
         else:
             self._become(
-                State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader()))
+                State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader()))
             )
 
     def _complete(self) -> None:
@@ -272,16 +288,19 @@ class LogStrip(QFrame):
     # recording
 
     def _entered(self) -> None:
-        if self.state is State.ASKING:
+        if self._awaited is not None:
+            self._pressed_early = True
+        elif not self.settle.is_over:
+            return
+        elif self.state is State.ASKING:
             self._record_now(confirmed=True)
         elif self._preview is not None and self._preview.questions:
             words = preview_words(self._preview, self._record, self._model.session.now(), self._reader())
             ask = self.tr("Enter again says yes, Esc leaves it.")
-            self._become(State.ASKING, self._mark(" ".join(words.questions), ask))
+            self._become(State.ASKING, marked(" ".join(words.questions), ask))
+            self.settle.start()
         elif self._preview is not None:
             self._record_now(confirmed=False)
-        elif self.state is State.AWAITED:
-            self._enter_pending = True
 
     def _record_now(self, *, confirmed: bool) -> None:
         if not self._model.session.person:
@@ -290,7 +309,7 @@ class LogStrip(QFrame):
             return
         request = self._request(confirmed)
         self.line.clear()
-        self._preview, self._enter_pending = None, False
+        self._forget_preview()
         self._become(State.AWAITED, escape(self.tr("Recording...")))
         self._model.ask(entry.log_line, request, done=self._done, failed=self._failed)
 
@@ -300,17 +319,16 @@ class LogStrip(QFrame):
     def take(self, recorded: Recorded) -> None:
         """Something was recorded, here or by a form: remember it for the undo, and say so."""
         self.remember(recorded)
-        self._become(
-            State.TOLD,
-            self._mark(
-                self.tr("Recorded for {label}.").format(label=self._label), self.tr("Ctrl+Z undoes it.")
-            ),
+        whom = self.tr("Recorded for {label}").format(
+            label=self._labels.get(recorded.episode, recorded.episode)
         )
+        what = recorded_words(recorded.entries, self._model.session.now(), self._reader())
+        self._become(State.TOLD, marked(f"{whom}, {what}.", self.tr("Ctrl+Z undoes it.")))
         self.recorded.emit(recorded)
 
     def _failed(self, failure: Failure) -> None:
         self._become(
-            State.REFUSED, self._mark(self.tr("Not recorded."), sentence(failure.message, self._reader()))
+            State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader()))
         )
 
     # undo
@@ -340,7 +358,7 @@ class LogStrip(QFrame):
         names = ", ".join(dict.fromkeys(channel_name(e.channel) for e in outcome.value.entries))
         self._become(
             State.TOLD,
-            self._mark(self.tr("Undone: {what}.").format(what=names), self.tr("The record keeps both.")),
+            marked(self.tr("Undone: {what}.").format(what=names), self.tr("The record keeps both.")),
         )
         self.recorded.emit(outcome.value)
 
@@ -367,29 +385,7 @@ class LogStrip(QFrame):
         text = self.tr(
             "/ goes to the line. What you type is shown here before Enter records it. Tab completes, Esc leaves."
         )
-        return f"<span style='color:{self._theme.colours.ink_quiet}'>{escape(text)}</span>"
-
-    def _preview_html(self, words: PreviewWords) -> str:
-        quiet = self._theme.colours.ink_quiet
-        text = f"<b>{escape(words.head)}:</b> {escape(', '.join(words.values))}."
-        if words.effects:
-            text += f" <span style='color:{quiet}'>{escape(' '.join(words.effects))}</span>"
-        if words.questions:
-            text += f" <b>{escape(' '.join(words.questions))}</b>"
-        else:
-            text += f" <span style='color:{quiet}'>{escape(self.tr('Enter records.'))}</span>"
-        return text
-
-    def _completion_html(self, options: tuple[str, ...]) -> str:
-        quiet = self._theme.colours.ink_quiet
-        first, *rest = options
-        others = "&nbsp;&nbsp; ".join(escape(w) for w in rest)
-        tab = escape(self.tr("Tab:"))
-        start = f"<span style='color:{quiet}'>{tab}</span> <b>{escape(first)}</b>"
-        return f"{start}&nbsp;&nbsp; <span style='color:{quiet}'>{others}</span>"
-
-    def _mark(self, strong: str, rest: str) -> str:
-        return f"<b>{escape(strong)}</b> {escape(rest)}"
+        return quiet(text, self._theme.colours.ink_quiet)
 
     def _become(self, state: State, html: str) -> None:
         self.state = state

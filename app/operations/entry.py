@@ -28,7 +28,7 @@ if TYPE_CHECKING:
 class LineRequest:
     """A line as typed for an episode. `confirmed`: a person has answered its questions with yes.
 
-    `new`: begin the episode if the store does not know it.
+    `new`: begin the episode if the store does not know it. `gas_unit`: of gas pressures typed without one.
     """
 
     episode: str
@@ -36,6 +36,7 @@ class LineRequest:
     zone: str
     confirmed: bool = False
     new: bool = False
+    gas_unit: str = "mmHg"
 
 
 @dataclass(frozen=True, slots=True)
@@ -243,7 +244,7 @@ def check_not_future(at: Instant, now: Instant) -> None:
 def _previewed(store: Store, now: Instant, request: LineRequest) -> Preview:
     episode = _episode(store, request.episode, new=request.new)
     settings = SettingsInForce(episode)
-    line = read_line(request.line, now=now, zone=request.zone, in_force=settings.at)
+    line = read_line(request.line, now=now, zone=request.zone, in_force=settings.at, gas_unit=request.gas_unit)
     check_not_future(line.at, now)
     return Preview(episode.key, episode.label, line, _questions(store, episode, line.at, line.readings))
 

@@ -38,4 +38,6 @@ class LineField(QLineEdit):
         if event.key() == Qt.Key.Key_Escape:
             self.left.emit()
             return
+        if event.isAutoRepeat() and event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            return  # a key held down is one press, and no yes to what it brought up
         super().keyPressEvent(event)

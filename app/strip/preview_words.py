@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from math import isnan
 
@@ -13,7 +14,8 @@ from app.operations.entry import Preview
 from app.phrases import channel_name
 from app.words import Reader, sentence
 from core.judgement.setting_change import effect_of_change
-from core.record.channels import Group, Kind
+from core.record.channels import CHANNELS, Group, Kind
+from core.record.entries import NewEntry
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
 from core.record.reading import Reading
@@ -78,6 +80,18 @@ def reading_words(reading: Reading, reader: Reader) -> str:
     ):
         text = f"{reading.raw.replace(',', '.')} {text.partition(' ')[2]}".strip()
     return f"{name} {text}"
+
+
+def recorded_words(entries: Sequence[NewEntry], now: Instant, reader: Reader) -> str:
+    """What was recorded: its moment and each value, as the preview said it."""
+    values = [
+        reading_words(Reading(CHANNELS[e.channel], e.number, e.words, e.raw, e.raw_unit, e.decimals), reader)
+        if e.channel in CHANNELS
+        else e.words or e.channel
+        for e in entries
+    ]
+    moments = dict.fromkeys(_when(e.at, now, reader.zone) for e in entries)
+    return f"{', '.join(moments)}: {', '.join(values)}"
 
 
 def _when(at: Instant, now: Instant, zone: str) -> str:

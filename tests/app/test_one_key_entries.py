@@ -41,6 +41,7 @@ def test_a_settings_change_takes_at_most_four_keys_beside_its_digits(qtbot, wind
     hand, line = Hand(qtbot), window.strip.line
     hand.press(window.pages.ward.lanes, Key.Key_Slash)
     hand.type(line, keys)
+    settled(qtbot, window)  # Enter counts once the preview is shown
     hand.press(line, Key.Key_Return)
     until(qtbot, lambda: window.feed.answers["bed-7"].record.number(channel).v[-1] == value)
     assert hand.digits == digits

@@ -54,7 +54,9 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
     until(qtbot, lambda: len(settings_in(window)) > len(before))
     assert "IPAP 18 to 22 cmH2O" in settings_in(window)[-1]
     assert lane(window).due_word != due_before
-    assert "Recorded for Bed 7" in window.strip.plain()
+    told = window.strip.plain()
+    assert "Recorded for Bed 7, now (05:30): IPAP 22 cmH2O, EPAP 6 cmH2O, FiO2 35 %." in told
+    assert "Ctrl+Z undoes it." in told
 
     qtbot.keyClick(window.strip.line, Key.Key_Escape)
     qtbot.keyClick(lanes, Key.Key_Return)
@@ -70,7 +72,8 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
 def test_four_keys_beside_the_digits_log_a_change(qtbot, window):
     qtbot.keyClick(window.pages.ward.lanes, Key.Key_Slash)
     qtbot.keyClicks(window.strip.line, "20/6")
-    qtbot.keyClick(window.strip.line, Key.Key_Return)  # at once, before the preview has come
+    settled(qtbot, window)
+    qtbot.keyClick(window.strip.line, Key.Key_Return)
     until(qtbot, lambda: "IPAP 18 to 20" in settings_in(window)[-1])
 
 
@@ -89,12 +92,18 @@ def test_escape_leaves_all_untouched(qtbot, window):
 
 def test_an_unusual_value_asks_and_only_a_second_enter_says_yes(qtbot, window):
     head = window.model.session.head
+    seconds = [100.0]
+    window.strip.settle.clock = lambda: seconds[0]
     window.strip.focus()
     type_line(qtbot, window, "spo2 62")
     assert "62 %" in window.strip.plain()
     qtbot.keyClick(window.strip.line, Key.Key_Return)
     assert window.strip.state == "asking"
     assert window.model.session.head == head
+    seconds[0] += 0.69  # the second half of a double press
+    qtbot.keyClick(window.strip.line, Key.Key_Return)
+    assert window.strip.state == "asking"
+    seconds[0] += 0.02
     qtbot.keyClick(window.strip.line, Key.Key_Return)
     until(qtbot, lambda: window.feed.answers["bed-7"].record.number("spo2").v[-1] == 62)
     assert not window.feed.answers["bed-7"].record.number("spo2").doubt[-1]
