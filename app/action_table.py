@@ -91,6 +91,8 @@ DEEDS: Final = (
          needs_store=False),
     Deed("people", "store", QT_TRANSLATE_NOOP("action", "People..."), ("Ctrl+Shift+P",),
          QT_TRANSLATE_NOOP("action", "Who signs in with a PIN: add, retire, give a new PIN."), parted=True),
+    Deed("archive", "store", QT_TRANSLATE_NOOP("action", "Ended episodes..."), ("Ctrl+Shift+W",),
+         QT_TRANSLATE_NOOP("action", "Copy ended episodes into an archive; remove them when their time is over.")),
     Deed("change_passphrase", "store", QT_TRANSLATE_NOOP("action", "Change passphrase..."), ("Ctrl+Shift+Y",),
          QT_TRANSLATE_NOOP("action", "A new passphrase for this store, and a new recovery code if you like.")),
     Deed("focus_strip", "log", QT_TRANSLATE_NOOP("action", "Log a line"), ("Ctrl+L", "/"),

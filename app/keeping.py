@@ -26,6 +26,8 @@ if TYPE_CHECKING:
     from app.window import MainWindow
 
 BUSY = "store.busy_for_now"
+BACKUP, DISK, DRAFT = "backup", "disk", "draft"
+"""Subjects of notices that are no message of the store."""
 RETRY_MS = 5_000
 """How often a store that another program holds is tried again."""
 
@@ -225,20 +227,20 @@ class Keeping(QObject):
         self.notices.tell(key, sentence(happened, self._window.plain_reader) if happened is not None else "")
 
     def _backups_stand(self, found: Rotated) -> None:
-        self.notices.tell("backup", "")
+        self.notices.tell(BACKUP, "")
         told = " ".join(sentence(m, self._window.reader) for m in found.notices)
-        self.notices.tell("disk", told, lasting=True)
+        self.notices.tell(DISK, told, lasting=True)
 
     def _backup_failed(self, failure: Failure) -> None:
         """Silence would be taken for a backup."""
         told = self.tr("No backup was taken.") + " " + sentence(failure.message, self._window.reader)
-        self.notices.tell("backup", told)
+        self.notices.tell(BACKUP, told)
 
     def _recovered(self, label: str) -> None:
         told = self.tr(
             "A line for {label} was being typed when the program ended. It is back; nothing of it is recorded."
         )
-        self.notices.tell("draft", told.format(label=label))
+        self.notices.tell(DRAFT, told.format(label=label))
 
     def _try_again(self) -> None:
         if self._model is not None:

@@ -214,7 +214,10 @@ class SessionModel(QObject):
             what.add(What.LAYOUT)
         if not what:
             return
-        self._session = replace(known, head=max(outcome.head, known.head),
+        if found.erased:
+            what.add(What.STORE)  # views keep nothing of an episode that was removed
+        self._session = replace(known, selection=None if found.erased else known.selection,
+                                head=max(outcome.head, known.head),
                                 policy=found.policy or known.policy,
                                 notices=known.notices if found.policy is None else found.notices,
                                 layout_revision=found.layout_revision, has_people=found.has_people)  # fmt: skip

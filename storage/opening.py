@@ -37,13 +37,34 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
         RecordError: `passphrase.too_short`.
     """
     _check_free(path)
-    facts = {"format": str(schema.FORMAT), "readable_from": str(schema.FORMAT), "store_id": str(uuid4()), **facts}
+    facts = _with_format(facts)
     new = keys.new_key(facts["store_id"], passphrase, cost) if passphrase is not None else None
-    key = new.key if new else None
+    database = _make(path, new.key if new else None, new.envelope if new else "", facts)
+    return Opened(database, new.key if new else None, facts, (), new.recovery_code if new else None)
+
+
+def create_beside(path: Path, store: Path, key: bytes | None, facts: dict[str, str]) -> Opened:
+    """Make a new store that the passphrase and recovery code of another one open: same key, a copy of its envelope.
+
+    Raises:
+        StoreError: as `create`.
+    """
+    _check_free(path)
+    facts = _with_format(facts)
+    envelope = keys.read_envelope(keys.envelope_path(store)) if key is not None else ""
+    return Opened(_make(path, key, envelope, facts), key, facts)
+
+
+def _with_format(facts: dict[str, str]) -> dict[str, str]:
+    return {"format": str(schema.FORMAT), "readable_from": str(schema.FORMAT), "store_id": str(uuid4()), **facts}
+
+
+def _make(path: Path, key: bytes | None, envelope: str, facts: dict[str, str]) -> Database:
+    """The file with its schema and facts; whole, or nothing of it."""
     _claim(path)
     try:
-        if new:
-            keys.write_envelope(keys.envelope_path(path), new.envelope)
+        if envelope:
+            keys.write_envelope(keys.envelope_path(path), envelope)
         make_durable(path, key)
         database = Database(path, key)
         try:
@@ -54,7 +75,7 @@ def create(path: Path, passphrase: str | None, facts: dict[str, str], cost: keys
     except BaseException:
         remove(path)
         raise
-    return Opened(database, key, facts, (), new.recovery_code if new else None)
+    return database
 
 
 def remove(path: Path) -> None:

@@ -6,8 +6,10 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
+import sqlalchemy as sa
+
 from core.record.instant import Instant
-from storage import documents, opening, restore_report, settings_kept
+from storage import documents, opening, restore_report, schema, settings_kept
 from storage.draft_batch import DraftBatch, DraftDocument, DraftPolicy, Receipt
 
 _ALL = 2**62
@@ -23,6 +25,19 @@ class StoreKept:
     def append_drafts(self, drafts: Sequence[DraftBatch], times: Sequence[Instant]) -> list[Receipt]:
         """Add batches to the ledger."""
         raise NotImplementedError
+
+    def fact(self, key: str) -> str | None:
+        """One of the store's own facts as it stands now, or None."""
+        facts = schema.store_facts.c
+        with self._opened.database.read() as connection:
+            found = connection.execute(sa.select(facts.value).where(facts.key == key)).scalar()
+        return None if found is None else str(found)
+
+    def put_fact(self, key: str, value: str) -> None:
+        """Keep one of the store's own facts. Facts are outside the ledger; what matters of them is also an event."""
+        with self._opened.database.write() as connection:
+            connection.execute(sa.delete(schema.store_facts).where(schema.store_facts.c.key == key))
+            connection.execute(sa.insert(schema.store_facts), {"key": key, "value": value})
 
     def newer_than(self, head: int) -> restore_report.Newer:
         """What was recorded after a sequence, by episode: what a backup of that sequence lacks."""

@@ -141,6 +141,12 @@ class StoreDeeds(Doer):
         told = self.tr("The store is not sound. Restore the newest backup, or save what can be read.")
         TableDialog(Table(self.tr("Findings"), heads, rows, told), self.window.theme, self.window).open()
 
+    def do_archive(self) -> None:
+        """List the ended episodes; archive or remove them."""
+        from app.dialogs.archive import ArchiveDialog
+
+        ArchiveDialog(self.model, self.window.reader, self.window.theme, self.window).open()
+
     # people
 
     def do_people(self) -> None:

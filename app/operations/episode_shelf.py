@@ -41,6 +41,8 @@ class EpisodeShelf:
             self._head = store.head()
             return
         news = store.changes_since(self._head)
+        if news.erased:
+            self._kept.clear()
         for key in news.episodes:
             self._kept.pop(key, None)
         self._head = news.head

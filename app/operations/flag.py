@@ -39,7 +39,8 @@ def keep_transitions(store: Store, who: str, now: Instant, request: Iterable[str
     store: the next look tells it."""
     policy = in_force(store)
     entries: list[NewEntry] = []
-    for key in request:
+    there = frozenset(store.episode_keys())
+    for key in (k for k in request if k in there):  # one may have been removed meanwhile
         record = load(store, key)
         flags = episode_figures(record, now, policy).flags
         entries += transitions(flags, record.transitions, key, policy.hash, now)

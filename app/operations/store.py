@@ -44,6 +44,8 @@ class Changes:
     notices: tuple[Message, ...] = ()
     """What a person should know of the store, where the policy was replaced."""
     has_people: bool = False
+    erased: bool = False
+    """An episode was removed."""
 
 
 def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[StoreFacts]:
@@ -62,11 +64,12 @@ def changes(store: Store, who: str, now: Instant, request: int) -> Outcome[Chang
     """What was committed after the sequence `request`."""
     found = store.changes_since(request)
     if not found.policy_changed:
-        plain = Changes(found.episodes, None, found.layout_revision, has_people=_has_people(store))
+        plain = Changes(found.episodes, None, found.layout_revision, has_people=_has_people(store),
+                        erased=found.erased)  # fmt: skip
         return Outcome(plain, found.head)
     in_force = policy_found(store)
     notices = (*store.notices, *in_force.passed_over)
-    made = Changes(found.episodes, in_force.policy, found.layout_revision, notices, _has_people(store))
+    made = Changes(found.episodes, in_force.policy, found.layout_revision, notices, _has_people(store), found.erased)
     return Outcome(made, found.head)
 
 

@@ -10,6 +10,12 @@ _CHAIN = (
 )
 
 TEMPLATES: Final[dict[str, str]] = {
+    "archive.bad_retention": "{value} is no retention time. Accepted: 1 to {accepted} days.",
+    "archive.differs": "What was archived of {episode} is not what the store says: nothing was archived.",
+    "archive.no_retention": "Nothing can be removed before the ward has said how long it keeps. Accepted: {accepted}.",
+    "archive.not_ended": "{episode} has no recorded end. Accepted: {accepted}.",
+    "archive.nothing": "There is nothing to archive. Accepted: {accepted}.",
+    "archive.too_early": "The retention time of {episode} is not over. Accepted: from {accepted:time} on.",
     "demo.sample_refused": "The sample shift cannot be taken in: {detail}.",
     "error.unexpected": "Something went wrong in the program: {detail}. Nothing was recorded by this step.",
     "export.backwards": "The span ends ({end:time}) before it starts ({start:time}).",

@@ -5,8 +5,10 @@ import json
 import pytest
 
 from app.cli import main
+from core.record.entries import NewEntry
+from core.record.instant import HOUR
 from storage.store import Store
-from tests.support.open_window import make_store
+from tests.support.open_window import NOW, make_store
 
 
 @pytest.fixture
@@ -70,3 +72,28 @@ def test_verify_checks_a_witness_and_adds_to_one(ward, tmp_path, capsys):
     code, _, err = said(capsys, "--store", ward, "verify", "--witness", file)
     assert code == 1
     assert "cut off or replaced" in err
+
+
+def test_archive_and_remove(ward, tmp_path, capsys):
+    with Store.open(ward) as store:
+        ended = NewEntry("bed-3", "ended_at", NOW - HOUR, float(NOW - HOUR))
+        store.append([ended], by="AB", operation="log", now=NOW)
+    old = tmp_path / "old.luffmark"
+    assert "bed-3  ended 28-Mar-2026" in said(capsys, "--store", ward, "archive", "list")[1]
+    code, out, err = said(capsys, "--store", ward, "archive", "write", old, "bed-3")
+    assert code == 0, err
+    assert "1 episode(s)" in out
+    code, _, err = said(capsys, "--store", ward, "archive", "write", tmp_path / "b.luffmark", "bed-7")
+    assert code == 1
+    assert "no recorded end" in err
+    assert "how long it keeps" in said(capsys, "--store", ward, "archive", "remove", "bed-3")[2]
+    assert said(capsys, "--store", ward, "archive", "retention", "soon")[0] == 1
+    assert said(capsys, "--store", ward, "archive", "retention", "1")[0] == 0
+    code, out, err = said(capsys, "--store", ward, "archive", "remove", "bed-3")
+    assert code == 0, err
+    assert "expires by" in out
+    assert said(capsys, "--store", ward, "verify")[0] == 0
+    assert "Bed 3" in said(capsys, "--store", old, "figures", "bed-3")[1]
+    code, _, err = said(capsys, "--store", old, "log", "bed-3", "rr 20", "--yes")
+    assert code == 1
+    assert "reading only" in err
