@@ -47,6 +47,7 @@ class ArchiveDialog(AskingDialog):
         self.table = self._make_table()
         self.days = QSpinBox()
         self.days.setRange(1, MOST_DAYS)
+        self.days.setButtonSymbols(QSpinBox.ButtonSymbols.NoButtons)
         self.days.setValue(3650)
         self.keep, self.remove = QPushButton(self.tr("Keep so long")), QPushButton(self.tr("Remove the chosen..."))
         self.body.addWidget(self.told)

@@ -12,7 +12,7 @@ _CHAIN = (
 TEMPLATES: Final[dict[str, str]] = {
     "archive.bad_retention": "{value} is no retention time. Accepted: 1 to {accepted} days.",
     "archive.differs": "What was archived of {episode} is not what the store says: nothing was archived.",
-    "archive.no_retention": "Nothing can be removed before the ward has said how long it keeps. Accepted: {accepted}.",
+    "archive.no_retention": "Nothing is removed before the ward has said how long it keeps. Accepted: {accepted}.",
     "archive.not_ended": "{episode} has no recorded end. Accepted: {accepted}.",
     "archive.nothing": "There is nothing to archive. Accepted: {accepted}.",
     "archive.too_early": "The retention time of {episode} is not over. Accepted: from {accepted:time} on.",
@@ -49,7 +49,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "replay.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
         "Replay fewer episodes, or a shorter span.",
-    "salvage.batches_lost": "{count:0} recording(s) lost their time and author; their values took those of the one before.",
+    "salvage.batches_lost": "{count:0} recording(s) lost their time and author; values took the time before.",
     "salvage.doubtful": "{count:0} entries are kept and marked doubtful: nothing proves that they were not changed.",
     "salvage.kept_lost": "{count:0} layouts or drafts were damaged and left out.",
     "salvage.lost_between": "What was lost had been recorded between {first:time} and {last:time}.",
