@@ -44,6 +44,7 @@ class HelpDialog(QDialog):
         self.text.setAccessibleName(self.tr("Keys and lines"))
         self.text.setHtml(self._html(theme))
         shapes = QScrollArea()
+        shapes.setAccessibleName(self.tr("What the shapes mean"))
         shapes.setWidgetResizable(True)
         shapes.setWidget(_shapes(theme, self.tr("Shapes")))
         shapes.setFixedWidth(theme.px(230))

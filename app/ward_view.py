@@ -202,6 +202,7 @@ class WardView(QWidget):
                 self.tr("Ward: {count} episodes along the shift's clock").format(count=len(lanes)),
             )
         )
+        self.lanes.setAccessibleDescription("\n".join(x.sentence for x in lanes) or self._empty_word())
         self.status.say(self.lanes.sentence_of_selection())
 
     def mark_later(self, counts: Mapping[str, int]) -> None:
