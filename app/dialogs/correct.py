@@ -9,6 +9,7 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QHeaderView,
+    QLabel,
     QLineEdit,
     QTreeWidget,
     QTreeWidgetItem,
@@ -23,6 +24,7 @@ from app.operations import entry
 from app.operations.outcome import Outcome
 from app.phrases import channel_name
 from app.session import SessionModel
+from app.strip.settle_time import SettleTime
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
@@ -63,6 +65,13 @@ class CorrectDialog(AskingDialog):
         self.go.setText(self.tr("Record it"))
         self._model, self._record, self._reader = model, record, reader
         self._confirmed = False
+        self._sent: tuple[str | None, str] = (None, "")
+        self.settle = SettleTime()
+        self.whom = QLabel(title)
+        self.whom.setTextFormat(Qt.TextFormat.PlainText)
+        self.whom.setWordWrap(True)
+        self.whom.setProperty("role", "title")
+        self.body.addWidget(self.whom)
         self.list = QTreeWidget()
         self.act, self.to = Chooser(), Chooser()
         self.value, self.time, self.reason = QLineEdit(), QLineEdit(), QLineEdit()
@@ -95,9 +104,13 @@ class CorrectDialog(AskingDialog):
         self.field(self.tr("What to do"), self.act)
         self.field(self.tr("Right value, with unit"), self.value)
         self.field(self.tr("Right time, HH:MM"), self.time)
+        self.to.setPlaceholderText(self.tr("Choose the right patient"))
+        self.to.setCurrentIndex(-1)
         self.field(self.tr("Right patient"), self.to)
         self.field(self.tr("Reason"), self.reason)
         self.act.currentIndexChanged.connect(self._act_chosen)
+        for edited in (self.value, self.time):
+            edited.textChanged.connect(self._changed)
 
     def _fill(self) -> None:
         for s in sorted(self._record.standing, key=lambda s: (-s.entry.at, -s.entry.seq)):
@@ -129,7 +142,6 @@ class CorrectDialog(AskingDialog):
     def _chosen(self) -> None:
         found = self._entry()
         if found is not None:
-            self._confirmed = False
             self.value.setText(
                 f"{found.raw} {found.raw_unit}".strip()
                 if CHANNELS[found.channel].kind is not Kind.MARK
@@ -148,8 +160,19 @@ class CorrectDialog(AskingDialog):
         self.value.setEnabled(act == Act.CORRECT)
         self.time.setEnabled(act == Act.CORRECT)
         self.to.setEnabled(act == Act.MOVE)
+        self.to.setCurrentIndex(-1)
+        self.form.setRowVisible(self.to, act == Act.MOVE)
+        self._changed()
+
+    def _changed(self) -> None:
+        """A yes was for the value that stood there."""
+        self._confirmed = False
+        self.settle.clear()
+        self.wrong.clear()
 
     def submit(self) -> None:
+        if not self.settle.is_over:
+            return
         found = self._entry()
         if found is None:
             self.refuse(self.tr("Choose what was logged."))
@@ -157,6 +180,10 @@ class CorrectDialog(AskingDialog):
         if not self.reason.text().strip():
             self.refuse(self.tr("Give the reason in a few words."))
             self.reason.setFocus()
+            return
+        if self.act.currentData() == Act.MOVE and self.to.currentData() is None:
+            self.refuse(self.tr("Choose the right patient."))
+            self.to.setFocus()
             return
         try:
             self._ask(found)
@@ -169,10 +196,10 @@ class CorrectDialog(AskingDialog):
             request: object = entry.WithdrawalRequest(found.episode, found.id, reason)
             self._model.ask(entry.withdraw, request, done=self._done, failed=self._failed)
         elif act == Act.MOVE:
-            request = entry.MoveRequest(found.episode, found.id, self.to.currentData() or "", reason)
+            request = entry.MoveRequest(found.episode, found.id, self.to.currentData(), reason)
             self._model.ask(entry.move, request, done=self._done, failed=self._failed)
         else:
-            value, unit = self._typed(found)
+            value, unit = self._sent = self._typed(found)
             request = entry.CorrectionRequest(
                 found.episode, found.id, reason, value, unit, self._at(found), self._confirmed
             )
@@ -203,7 +230,13 @@ class CorrectDialog(AskingDialog):
 
     def _failed(self, failure: Failure) -> None:
         text = sentence(failure.message, self._reader)
-        if failure.message.key == "line.unconfirmed":
+        found = self._entry()
+        if failure.message.key == "line.unconfirmed" and found is not None:
+            if self._typed(found) != self._sent:
+                return  # edited meanwhile: the question is about what no longer stands there
             self._confirmed = True
-            text += self.tr(" 'Record it' again says yes.")
+            self.settle.start()
+            asked = entry.correction_questions(found, *self._typed(found))
+            told = " ".join(sentence(m, self._reader) for m in asked)
+            text = self.tr("{asked} 'Record it' again says yes.").format(asked=told or text)
         self.refuse(text)

@@ -170,11 +170,21 @@ def correct(store: Store, who: str, now: Instant, request: CorrectionRequest) ->
         new = replace(_as_new(old), at=at)
     else:
         reading = read_value(channel(old.channel), request.value, request.unit)
-        if reading.doubts and not request.confirmed:
-            raise refuse("line.unconfirmed", count=len(reading.doubts), first=reading.doubts[0].key)
+        asked = correction_questions(old, request.value, request.unit)
+        if asked and not request.confirmed:
+            raise refuse("line.unconfirmed", count=len(asked), first=asked[0].key)
         new = from_reading(old.episode, at, reading, zone=old.zone, note=old.note, confirmed=request.confirmed)
     new = replace(new, by=who, action=Action.CORRECT, replaces=old.id, reason=request.reason.strip())
     return _append(store, old.episode, (new,), who, "entry.correct", now)
+
+
+def correction_questions(old: Entry, value: str | None, unit: str) -> tuple[Message, ...]:
+    """What to ask before a value takes the place of an entry's: the value, its limits.
+
+    Raises:
+        RecordError: what is wrong with the value.
+    """
+    return () if value is None else read_value(channel(old.channel), value, unit).doubts
 
 
 def withdraw(store: Store, who: str, now: Instant, request: WithdrawalRequest) -> Outcome[Recorded]:

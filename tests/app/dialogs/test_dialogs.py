@@ -2,7 +2,7 @@
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QApplication
+from PySide6.QtWidgets import QApplication, QComboBox
 
 from app.dialogs.action_finder import ActionFinder
 from app.dialogs.correct import Act, CorrectDialog
@@ -146,12 +146,29 @@ def test_a_value_is_withdrawn(qtbot, window):
     until(qtbot, lambda: ph_of(window) == 7.27)
 
 
+def test_the_dialog_names_its_patient_in_large_and_no_other_until_a_move(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    assert dialog.whom.text() == "Bed 7"
+    assert dialog.whom.isVisible()
+    assert dialog.whom.property("role") == "title"
+    shown = [w.currentText() for w in dialog.findChildren(QComboBox) if w.isVisible()]
+    assert "Bed 3" not in shown
+    assert not dialog.to.isVisible()
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.MOVE))
+    assert dialog.to.isVisible()
+    assert dialog.to.currentText() == ""
+    dialog.reject()
+
+
 def test_a_value_moves_to_the_right_patient(qtbot, window):
     dialog = open_correct(qtbot, window)
     choose(dialog, "Respiratory rate", "27")
     dialog.act.setCurrentIndex(dialog.act.findData(Act.MOVE))
-    assert dialog.to.currentData() == "bed-3"
     dialog.reason.setText("wrong bed")
+    assert dialog.to.currentIndex() == -1
+    dialog.go.click()
+    assert dialog.wrong.text() == "Choose the right patient."
+    dialog.to.setCurrentIndex(dialog.to.findData("bed-3"))
     dialog.go.click()
     until(qtbot, lambda: len(window.feed.answers["bed-3"].record.number("rr")) == 2)
 
@@ -163,11 +180,24 @@ def test_a_wrong_value_is_refused_and_an_unusual_one_asked_about(qtbot, window):
     dialog.value.setText("9.9")
     dialog.go.click()
     until(qtbot, lambda: "9.9" in dialog.wrong.text())
-    dialog.value.setText("6.95")
+    seconds = [100.0]
+    dialog.settle.clock = lambda: seconds[0]
+    head = window.model.session.head
+    dialog.value.setText("7.91")
     dialog.go.click()
     until(qtbot, lambda: "again says yes" in dialog.wrong.text())
+    assert dialog.wrong.text().startswith("pH 7.91 is outside the usual 7.00 to 7.60.")
+    seconds[0] += 5
+    dialog.value.setText("6.75")  # another value: the yes to come was not for it
+    assert dialog.wrong.text() == ""
     dialog.go.click()
-    until(qtbot, lambda: ph_of(window) == 6.95)
+    until(qtbot, lambda: "pH 6.75" in dialog.wrong.text())
+    dialog.go.click()  # the second half of a double press
+    settled(qtbot, window)
+    assert window.model.session.head == head
+    seconds[0] += 0.8
+    dialog.go.click()
+    until(qtbot, lambda: ph_of(window) == 6.75)
 
 
 # panels
