@@ -68,6 +68,9 @@ DUE: Final[dict[str, str]] = {
     "due.probable_break": "A break that nobody logged is probable from {break_at:time}[[ to {end_at:time}]].",
     "due.reassessment": "After the settings of {anchor_at:time}[[; last looked at {last_at:time}]].",
     "due.repeat_gas": "After the gas of {gas_at:time}: pH {ph:2}[[, {state:" + _STATE + "}]].",
+    "due.repeat_gas_flag": "{marker:marker} since {since:time}; last gas at {gas_at:time}.",
+    "due.repeat_gas_soon": "After the gas of {gas_at:time}: pH {ph:2}, {why:pick severe=severe acidosis;worse=worse;"
+        "worse since start=worse since the start;gain lost=gain lost;not better=not better}.",
     "due.skin_check": "Skin under the mask last seen, or support begun, at {last_at:time}.",
     "due.spo2_recheck": "One reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",
 }  # fmt: skip
@@ -153,7 +156,7 @@ LEVERS: Final[dict[str, str]] = {
     "lever.upper_airway": "EPAP holds the upper airway open.",
 }  # fmt: skip
 
-_CLASSES = "no_axis_adverse=no axis adverse;between=between;worst_corner=worst corner"
+_CLASSES = "no_axis_adverse=no axis adverse;between=between no axis adverse and the worst corner;worst_corner=worst corner"
 
 OTHER: Final[dict[str, str]] = {
     "copd_failure.risk":

@@ -6,8 +6,9 @@ from collections.abc import Iterable, Iterator
 
 from core.judgement.context import Context
 from core.judgement.due_care import reassessment_item, skin_items
-from core.judgement.due_gas import confirm_items, gas_items, repeat_items
+from core.judgement.due_gas import confirm_items, gas_items
 from core.judgement.due_item import Item, closed_by_word
+from core.judgement.due_repeat import repeats
 from core.judgement.due_tasks import (
     break_end_items,
     ceiling_item,
@@ -23,6 +24,7 @@ from core.judgement.shapes import DueFigure, FlagFigure
 from core.record.instant import HOUR
 
 GASES = frozenset({"gas", "repeat_gas", "arterial_gas"})
+SERVED_BY_ONE = frozenset({"gas", "repeat_gas"})
 KEYS = (
     "gas", "repeat_gas", "arterial_gas", "reassessment", "skin_check", "mask_check", "oxygen_review",
     "complete_score", "ceiling", "break_end", "probable_break", "spo2_recheck",
@@ -41,18 +43,15 @@ def due_keys() -> tuple[str, ...]:
 def due_items(ctx: Context, flags: Iterable[FlagFigure], seen: Observed | None = None) -> tuple[DueFigure, ...]:
     """What is due as of the moment, the most urgent first; what was done in the last 12 h comes last."""
     seen = seen if seen is not None else Observed(ctx)
-    items = [closed_by_word(item, seen.episode.transitions) for item in _gathered(seen, tuple(flags))]
+    items = _one_gas_serves([closed_by_word(i, seen.episode.transitions) for i in _gathered(seen, tuple(flags))], ctx)
     shown = (i for i in items if _shown(seen, i))
     figures = [i.figure(ctx.as_of) for i in shown]
     return tuple(sorted(figures, key=lambda d: (ORDER[d.state], d.due_until, d.what)))
 
 
 def _gathered(seen: Observed, flags: tuple[FlagFigure, ...]) -> Iterator[Item]:
-    gas = seen.once(gas_items)
-    yield from gas
-    pending = any(i.done_at is None for i in gas)
-    # one gas serves both: the repeat is asked for only where no change asks for an earlier one
-    yield from (i for i in seen.once(repeat_items) if i.done_at is not None or not pending)
+    yield from seen.once(gas_items)
+    yield from repeats(seen, flags)
     yield from confirm_items(seen)
     yield from skin_items(seen)
     yield from break_end_items(seen)
@@ -60,6 +59,20 @@ def _gathered(seen: Observed, flags: tuple[FlagFigure, ...]) -> Iterator[Item]:
     single = (reassessment_item(seen), mask_item(seen, flags), oxygen_item(seen, flags), score_item(seen),
               ceiling_item(seen), recheck_item(seen))  # fmt: skip
     yield from (item for item in single if item is not None)
+
+
+def _one_gas_serves(items: list[Item], ctx: Context) -> list[Item]:
+    """One gas serves a change and a repeat: only the earlier is asked for, so that neither can put the other off.
+
+    The later one is asked for beside it once it is overdue while only the earlier one's result is awaited.
+    """
+    pending = [i for i in items if i.what in SERVED_BY_ONE and i.done_at is None]
+    if len(pending) < 2:
+        return items
+    first = min(pending, key=lambda i: i.due_until)
+    awaited = first.state(ctx.as_of) == "awaiting result"
+    hidden = [i for i in pending if i is not first and not (awaited and i.state(ctx.as_of) == "overdue")]
+    return [i for i in items if not any(i is h for h in hidden)]
 
 
 def _shown(seen: Observed, item: Item) -> bool:

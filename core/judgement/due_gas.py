@@ -1,4 +1,4 @@
-"""Gases that are due: after a start or a change, the repeat when poor, an arterial one after a venous (rules 7).
+"""Gases that are due: after a start or a change, and an arterial one after a venous (rules 7).
 
 A gas due runs from 30 to 120 minutes after its anchor. A later anchor takes its place but keeps its latest time, so
 that one change after another cannot put a gas off for ever. An early gas (1-29 min) and a venous one close nothing.
@@ -10,6 +10,7 @@ from bisect import bisect_left
 from collections.abc import Iterator
 from dataclasses import dataclass
 
+from core.judgement import arms
 from core.judgement.due_item import Item
 from core.judgement.markers.observed import Observed
 from core.judgement.policy_sections import DueRule
@@ -85,22 +86,22 @@ def _until(seen: Observed, rule: DueRule, response: ResponseFigure) -> Instant:
 def _item(seen: Observed, rule: DueRule, pending: _Pending, gas: GasFigure | None) -> Item:
     return Item(
         "gas", pending.because, min(pending.counts_from, pending.until), pending.until, rule.soon_min,
-        pending.anchor_at, *_closed(gas),
-        awaiting_since=_sent(seen, rule, pending.counts_from) if gas is None else None,
+        pending.anchor_at, *closed(gas),
+        awaiting_since=sent(seen, rule, pending.counts_from) if gas is None else None,
     )  # fmt: skip
 
 
-def _closed(gas: GasFigure | None) -> tuple[Instant | None, str | None]:
+def closed(gas: GasFigure | None) -> tuple[Instant | None, str | None]:
     """When a gas closed an item, and the entry that did."""
     return (None, None) if gas is None else (gas.at, gas.ids[0] if gas.ids else None)
 
 
-def _sent(seen: Observed, rule: DueRule, since: Instant) -> Instant | None:
+def sent(seen: Observed, rule: DueRule, since: Instant) -> Instant | None:
     """When a gas was sent whose result may still come: the newest, not before `since`, not too long ago."""
-    sent = seen.episode.text("gas_sent").t
-    if not sent.size:
+    moments = seen.episode.text("gas_sent").t
+    if not moments.size:
         return None
-    newest, wait = int(sent[-1]), int(rule.limits.get("awaiting_min", 60.0) * MINUTE)
+    newest, wait = int(moments[-1]), int(rule.limits.get("awaiting_min", 60.0) * MINUTE)
     return newest if newest // MINUTE >= since // MINUTE and seen.as_of - newest <= wait else None
 
 
@@ -131,7 +132,8 @@ def _last_acidotic(seen: Observed, at: Instant) -> bool:
 
 
 def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
-    """Pressure support by 2 or more, any change of mode, oxygen up by 0.04 or 1 L/min at hypercapnic risk."""
+    """Pressure support by 2 or more, any change of mode, oxygen up by 0.04 or 1 L/min at hypercapnic risk, FiO2 up
+    by 0.10 in hypoxaemic failure."""
     channels = {s.channel for s in response.steps}
     if "mode" in channels:
         return True
@@ -139,9 +141,20 @@ def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
     support = moved.get("ipap", 0.0) - moved.get("epap", 0.0) + moved.get("pressure_support", 0.0)
     if round(abs(support) - rule.limits["pressure_support"], 6) >= 0:
         return True
+    if _oxygen_raised(seen, rule, response, moved.get("fio2", 0.0)):
+        return True
     if not channels & {"fio2", "o2_flow"} or not (seen.risk_since is not None or seen.ctx.hypercapnic_risk):
         return False
     return any(round(moved.get(c, 0.0) - rule.limits[c], 6) >= 0 for c in ("fio2", "o2_flow"))
+
+
+def _oxygen_raised(seen: Observed, rule: DueRule, response: ResponseFigure, by: float) -> bool:
+    """FiO2 up by 0.10 or more while the last P/F before it was at or below 300: is it enough?"""
+    if round(by - rule.limits["fio2_hypoxaemic"], 6) < 0:
+        return False
+    with_pf = (g for g in reversed(seen.gases) if g.at <= response.first_at and g.pf_mmHg is not None)
+    last = next(with_pf, None)
+    return last is not None and arms.hypoxaemia(last, seen.policy)
 
 
 def _moved(steps: tuple[Step, ...], channel: str) -> float:
@@ -170,39 +183,6 @@ def _worse_after_break(seen: Observed, response: ResponseFigure) -> bool:
     return before is not None and after is not None and direction(after.value - before.value, noise.spo2.value) == -1
 
 
-def repeat_items(seen: Observed) -> list[Item]:
-    """The repeat at 4-6 h when poor: after each poor gas on support, counted from its anchor."""
-    rule = seen.policy.due.get("repeat_gas")
-    if rule is None or not rule.on:
-        return []
-    items = []
-    gases = [g for g in seen.on_support_gases if g.ph is not None]
-    for gas, later in zip(gases, [*gases[1:], None], strict=False):
-        if not _poor(seen, gas):
-            continue
-        base = _anchor_of(seen, gas)
-        if gas.at >= base + int(rule.from_min * MINUTE):
-            base = gas.at
-        because = Message("due.repeat_gas", {"gas_at": gas.at, "ph": gas.ph, "state": gas.state})
-        sent = _sent(seen, rule, gas.at + MINUTE) if later is None else None
-        items.append(
-            Item("repeat_gas", because, base + int(rule.from_min * MINUTE), base + int(rule.until_min * MINUTE),
-                 rule.soon_min, base, *_closed(later), awaiting_since=sent)
-        )  # fmt: skip
-    return items
-
-
-def _anchor_of(seen: Observed, gas: GasFigure) -> Instant:
-    anchors = [a.response.anchor_at for a in seen.attributed.get(gas.at, ()) if a.response.effects]
-    return max((a for a in anchors if a <= gas.at), default=gas.at)
-
-
-def _poor(seen: Observed, gas: GasFigure) -> bool:
-    """Acidotic or severe, or judged worse or mixed."""
-    verdicts = {a.judged.verdict for a in seen.attributed.get(gas.at, ())}
-    return gas.state in ("severe", "acidotic") or bool(verdicts & {"worse", "mixed"})
-
-
 def confirm_items(seen: Observed) -> Iterator[Item]:
     """An arterial gas after a venous pH below 7.25."""
     rule = seen.policy.due.get("arterial_gas")
@@ -215,4 +195,4 @@ def confirm_items(seen: Observed) -> Iterator[Item]:
         later = next((g for g in seen.gases if g.at >= gas.at), None)
         because = Message("due.confirm_arterially", {"gas_at": gas.at, "ph": gas.ph})
         yield Item("arterial_gas", because, gas.at + int(rule.from_min * MINUTE),
-                   gas.at + int(rule.until_min * MINUTE), rule.soon_min, None, *_closed(later))  # fmt: skip
+                   gas.at + int(rule.until_min * MINUTE), rule.soon_min, None, *closed(later))  # fmt: skip

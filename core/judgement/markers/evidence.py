@@ -53,6 +53,8 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "due.gas_after_chain": ("anchor_at", "steps"),
         "due.gas_after_break": ("anchor_at",),
         "due.repeat_gas": ("gas_at", "ph", "state"),
+        "due.repeat_gas_soon": ("gas_at", "ph", "why"),
+        "due.repeat_gas_flag": ("gas_at", "marker", "since"),
         "due.confirm_arterially": ("gas_at", "ph"),
         "due.reassessment": ("anchor_at", "last_at"),
         "due.skin_check": ("last_at",),

@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from core.judgement.due_care import skin_items
-from core.judgement.due_gas import confirm_items, gas_items, repeat_items
+from core.judgement.due_gas import confirm_items, gas_items
 from core.judgement.due_item import Item, closed_by_word
+from core.judgement.due_repeat import repeat_items
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Spell
 from core.judgement.policy_sections import MarkerRule

@@ -10,10 +10,12 @@ import pytest
 
 from core.figures.episode_figures import judged
 from core.judgement.due import due_items, due_keys
+from core.judgement.due_gas import gas_items
 from core.judgement.flags import evaluate
+from core.judgement.markers.observed import Observed
 from core.judgement.policy import shipped_policy
 from core.record.entries import Action, NewEntry, recorded
-from tests.support.flag_cases import BEFORE, COPD, LUNG, START, clock, due, met
+from tests.support.flag_cases import BEFORE, COPD, LUNG, START, clock, ctx, due, met
 from tests.support.log_cases import at, build, entries
 
 BASE = COPD + BEFORE + START
@@ -147,7 +149,8 @@ def test_a_break_asks_only_when_acidotic_or_worse():
     off = "02:00 ph {} paco2 50\n05:00 mask_off rr 20\n05:40 mask_on rr {}"
     assert gas(RESOLVED + off.format("7.38", 22), "05:50")[2] == "done"
     assert gas(RESOLVED + off.format("7.38", 27), "05:50") == ("06:10", "07:40", "open", None)  # rate up by 7
-    assert gas(RESOLVED + off.format("7.34", 22), "05:50")[2] == "open"
+    asked = gas_items(Observed(ctx(RESOLVED + off.format("7.34", 22), "05:50")))[-1]
+    assert (asked.because.key, clock(asked.due_until)) == ("due.gas_after_break", "07:40")
 
 
 def test_the_repeat_at_4_to_6_hours_when_poor():
