@@ -18,7 +18,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
         args.out, tuple(args.episode), args.as_known_at, tuple(args.channel), args.start, args.end, args.dictionary
     )
     value: dict[str, object] = {"file": str(args.out)}
-    with context.open(read_only=True) as store:
+    with context.open() as store:
         if args.deidentified:
             return _deidentified(context, store, request, value)
         as_fhir = args.format == "fhir" or (not args.format and args.out.suffix == ".json")

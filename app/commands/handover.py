@@ -33,12 +33,14 @@ def run(context: Context, args: argparse.Namespace) -> int:
         print("luffmark: handover needs --from and --to (or --blank)", file=sys.stderr)
         return 2
     reader = context.reader()
-    with context.open(read_only=not args.close) as store:
+    with context.open(read_only=not (args.close or args.out)) as store:
         request = operations.HandoverRequest(args.start, args.end, args.as_known_at)
         gathered = operations.prepare(store, context.by, context.now(), request).value
         content = sheet_content(gathered, reader, given_by=args.given_by, taken_by=args.taken_by)
         if args.close:
             return _close(context, store, content, args)
+        if args.out:
+            operations.note_print(store, context.by, context.now(), f"{content.ward.shift}, {content.head}")
     value = {
         "from": zoned_iso(args.start, reader.zone), "to": zoned_iso(args.end, reader.zone),
         "head": gathered.printed_head, "episodes": [s.episode for s in gathered.shift.episodes],

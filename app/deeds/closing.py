@@ -26,6 +26,7 @@ class ClosingDeeds(WritingDeeds):
 
     _dialog: CloseHandoverDialog | None = None
     _names = ("", "", "A4")
+    _printed = ""
     _copy_to: Path | None = None
     _opened_folder: tempfile.TemporaryDirectory[str] | None = None
 
@@ -93,7 +94,13 @@ class ClosingDeeds(WritingDeeds):
         told = "" if QPrinterInfo.availablePrinterNames() else self.tr(
             "No printer is set up on this computer. Ctrl+P saves the sheet as a PDF.")  # fmt: skip
         self.window.say(told)
-        HandoverPreview(content, self.window).open()
+        self._printed = f"{content.ward.shift}, {content.head}"
+        preview = HandoverPreview(content, self.window)
+        preview.accepted.connect(self._note_print)
+        preview.open()
+
+    def _note_print(self) -> None:
+        self.window.doers.ward.note_print(self._printed)
 
     # closed ones
 

@@ -111,12 +111,20 @@ class WardDeeds(Doer):
         from app.sheet.content import sheet_content
         from app.sheet.printing import write_pdf
 
+        content = sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person)
         try:
-            write_pdf(
-                sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person),
-                self._path,
-            )
+            write_pdf(content, self._path)
         except OSError as error:
             self.window.show_failure(failure_of(error))
             return
         self.window.say(self.tr("{path} was written.").format(path=self._path))
+        self.note_print(f"{content.ward.shift}, {content.head}")
+
+    def note_print(self, detail: str) -> None:
+        """Keep in the chain what was printed."""
+        from app.operations import handover
+
+        self.model.ask(handover.note_print, detail, done=self._noted)
+
+    def _noted(self, outcome: Outcome[bool]) -> None:
+        """A print that could not be kept lies on paper all the same."""

@@ -94,6 +94,16 @@ def close(store: Store, who: str, now: Instant, request: ClosedHandover) -> Outc
     return Outcome(document, store.head())
 
 
+def note_print(store: Store, who: str, now: Instant, request: str) -> Outcome[bool]:
+    """Keep in the chain that a handover was printed or written to a file, which one and with which head.
+
+    Whether it could be kept: a store that takes no writing keeps nothing.
+    """
+    if not store.takes_writing():
+        return Outcome(False, store.head())
+    return Outcome(True, store.record_event("print", person=who, now=now, detail=request).last_seq)
+
+
 def closed_name(shift: str, given_by: str, taken_by: str) -> str:
     """What a closed handover is called in the list.
 
