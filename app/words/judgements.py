@@ -67,6 +67,7 @@ DUE: Final[dict[str, str]] = {
     "due.oxygen_review": "{marker:marker} since {since:time}.",
     "due.probable_break": "A break that nobody logged is probable from {break_at:time}[[ to {end_at:time}]].",
     "due.reassessment": "After the settings of {anchor_at:time}[[; last looked at {last_at:time}]].",
+    "due.reassessment_flag": "{marker:marker} since {since:time}[[; last looked at {last_at:time}]].",
     "due.repeat_gas": "After the gas of {gas_at:time}: pH {ph:2}[[, {state:" + _STATE + "}]].",
     "due.repeat_gas_flag": "{marker:marker} since {since:time}; last gas at {gas_at:time}.",
     "due.repeat_gas_soon": "After the gas of {gas_at:time}: pH {ph:2}, {why:pick severe=severe acidosis;worse=worse;"

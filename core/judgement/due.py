@@ -56,7 +56,7 @@ def _gathered(seen: Observed, flags: tuple[FlagFigure, ...]) -> Iterator[Item]:
     yield from skin_items(seen)
     yield from break_end_items(seen)
     yield from probable_break_items(seen)
-    single = (reassessment_item(seen), mask_item(seen, flags), oxygen_item(seen, flags), score_item(seen),
+    single = (reassessment_item(seen, flags), mask_item(seen, flags), oxygen_item(seen, flags), score_item(seen),
               ceiling_item(seen), recheck_item(seen))  # fmt: skip
     yield from (item for item in single if item is not None)
 

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import replace
 
 import numpy as np
 
 from core.judgement.due_item import Item, words_on
 from core.judgement.markers.observed import Observed
+from core.judgement.policy_sections import DueRule
+from core.judgement.shapes import FlagFigure
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
 
@@ -51,12 +53,35 @@ def assessed(seen: Observed) -> list[Instant]:
     return sorted({int(t) for t in np.concatenate((*words, counted))})
 
 
-def reassessment_item(seen: Observed) -> Item | None:
-    """The next look at the patient: an hour after the newest start or change, then every few hours."""
+def reassessment_item(seen: Observed, flags: Iterable[FlagFigure] = ()) -> Item | None:
+    """The next look at the patient: an hour after the newest start or change, then every few hours.
+
+    Every hour while a flag stands that is to be escalated and that nobody settled; comfort as the ceiling keeps to
+    the longer interval.
+    """
     rule = seen.policy.due.get("reassessment")
     begun = _begun(seen)
     if rule is None or not rule.on or begun is None:
         return None
+    plain = _after_anchor(seen, rule, begun)
+    urgent = [f for f in flags if f.tier == "escalate" and f.ended_at is None and f.state in ("raised", "seen")]
+    if not urgent or seen.ctx.comfort_care:
+        return plain
+    hourly = min((_after_flag(seen, rule, f) for f in urgent), key=lambda i: i.due_until)
+    return min((hourly, plain), key=lambda i: i.due_until)
+
+
+def _after_flag(seen: Observed, rule: DueRule, flag: FlagFigure) -> Item:
+    """An hour after the flag was met, then an hour after each look. A look at that minute is what raised it."""
+    said = (e.at for e in words_on(seen.episode.transitions, "reassessment"))
+    last = max((t for t in (*assessed(seen), *said) if t > flag.since), default=None)
+    base = flag.since if last is None else last
+    because = Message("due.reassessment_flag", {"marker": flag.marker, "since": flag.since, "last_at": last})
+    return Item("reassessment", because, base + int(rule.from_min * MINUTE),
+                base + int(rule.limits["escalate_min"] * MINUTE), rule.soon_min)  # fmt: skip
+
+
+def _after_anchor(seen: Observed, rule: DueRule, begun: Instant) -> Item:
     anchor = max((r.anchor_at for r in seen.ctx.responses if r.effects), default=begun)
     anchor = max(anchor, begun)
     looks = assessed(seen)

@@ -57,6 +57,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "due.repeat_gas_flag": ("gas_at", "marker", "since"),
         "due.confirm_arterially": ("gas_at", "ph"),
         "due.reassessment": ("anchor_at", "last_at"),
+        "due.reassessment_flag": ("marker", "since", "last_at"),
         "due.skin_check": ("last_at",),
         "due.mask_check": ("marker", "since"),
         "due.oxygen_review": ("marker", "since"),

@@ -194,6 +194,30 @@ def test_reassessment_after_each_change_then_every_four_hours():
     assert gas(BASE + "01:40 review\n02:00 ipap 24", "02:05", "reassessment")[1] == "03:00"
 
 
+def test_reassessment_within_the_hour_of_an_escalate_flag_and_hourly_while_it_stands():
+    log = BASE + "02:00 ph 7.36 paco2 55 rr 24\n03:00 gcs 7 rr 24\n"
+    raised = due(log, "03:10", "reassessment")[0]
+    assert (clock(raised.due_from), clock(raised.due_until)) == ("03:15", "04:00")
+    assert (raised.because.key, raised.because.values["marker"]) == ("due.reassessment_flag", "gcs_below_8")
+    assert gas(log, "04:01", "reassessment")[2] == "overdue"
+    looked = log + "03:40 review gcs 7\n"
+    assert gas(looked, "03:50", "reassessment")[1] == "04:40"
+    assert gas(looked + "04:30 rr 26 gcs 7\n", "04:41", "reassessment")[1] == "05:30"
+    assert gas(looked + "04:00 gcs 15\n", "04:10", "reassessment")[1] == "07:40"  # it stands no longer
+    assert gas(log + "03:05 ceiling_of_care comfort", "03:10", "reassessment")[1] == "07:00"
+    changed = log + "03:50 ipap 24\n"  # a change asks for a look of its own, and does not put this one off
+    assert gas(changed, "03:55", "reassessment")[1] == "04:00"
+
+
+def test_a_settled_escalate_flag_asks_for_no_hourly_look():
+    log = BASE + "02:00 ph 7.36 paco2 55 rr 24\n03:00 gcs 7 rr 24\n"
+    context = ctx(log, "03:10")
+    flags = evaluate(context)
+    settled = tuple(replace(f, state="settled") for f in flags)
+    until = [{d.what: clock(d.due_until) for d in due_items(context, f)} for f in (flags, settled)]
+    assert [(u["reassessment"], u.get("repeat_gas")) for u in until] == [("04:00", "04:00"), ("07:00", None)]
+
+
 def test_skin_under_the_mask():
     assert gas(BASE, "04:45", "skin_check") == ("04:00", "05:00", "soon", None)
     assert met("skin_check_overdue", BASE, "05:30") == "05:00-"
