@@ -189,7 +189,8 @@ def _dialogs(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
             (w for w in window.findChildren(QDialog) if w.isVisible()), None
         )
         if dialog is not None:
-            fill(dialog)
+            if isinstance(dialog, QDialog):
+                fill(dialog)
             _settle(window)
             yield name, dialog
             _pass_events()
