@@ -61,7 +61,8 @@ QToolButton[role="why"] {{
 QPushButton[role="small"] {{ padding: {g1}px {g3}px; min-height: {choice}px; }}
 QPushButton[role="small"]:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
 QPushButton[role="step"] {{
-    padding: 0px; font-size: {title}px; font-weight: 600; min-height: {glove_button}px; min-width: {glove_button}px;
+    padding: 0px; font-size: {title}px; font-weight: 600;
+    min-height: {glove_button}px; min-width: {glove_button}px;
 }}
 QPushButton[role="step"]:focus {{ padding: 0px; }}
 QAbstractSpinBox[role="large"] {{ min-height: {glove_field}px; }}

@@ -7,8 +7,8 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 from PySide6.QtWidgets import QGraphicsItem
 
-from app.chart.marks import fitted
 from app.chart.event_rail import draw_on_rail
+from app.chart.marks import fitted
 from app.chart.row import FRONT, ClockRow, Layer, RowItem
 from app.chart.shapes import MICROSECONDS, Tick
 from app.chart.time_ticks import ClockMark, time_word
