@@ -87,7 +87,9 @@ QLineEdit, QPlainTextEdit, QTextEdit, QAbstractSpinBox, QComboBox {{
     padding: {g1}px {g3}px; min-height: {target}px;
     selection-background-color: {accent}; selection-color: {on_accent};
 }}
-QLineEdit:focus, QPlainTextEdit:focus, QTextEdit:focus, QAbstractSpinBox:focus, QComboBox:focus {{ border: 2px solid {accent}; padding: {g1_1}px {g3_1}px; }}
+QLineEdit:focus, QPlainTextEdit:focus, QTextEdit:focus, QAbstractSpinBox:focus, QComboBox:focus {{
+    border: 2px solid {accent}; padding: {g1_1}px {g3_1}px;
+}}
 QLineEdit:disabled, QAbstractSpinBox:disabled, QComboBox:disabled {{
     background: {sunken}; color: {ink_quiet}; border-color: {line};
 }}
