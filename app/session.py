@@ -25,8 +25,8 @@ from core.judgement.policy import Policy, shipped_policy
 from core.record.instant import Instant
 from core.record.message import Message
 
-POLL_MS = 2_000
-"""How often another process's commits are looked for."""
+POLL_MS = 800
+"""How often another process's commits are looked for: both windows see an entry within a second."""
 TICK_MS = 15_000
 """How often a running clock tells that it moved."""
 

@@ -77,6 +77,10 @@ def test_start_tells_the_store_and_its_head(model: SessionModel, qtbot: Any) -> 
     assert model.session.read_only
 
 
+def test_a_foreign_commit_is_looked_for_more_often_than_each_second() -> None:
+    assert POLL_MS < 1_000
+
+
 def test_a_foreign_commit_is_told_once(model: SessionModel, store: Heads, qtbot: Any) -> None:
     with qtbot.waitSignal(model.changed):
         model.start()
