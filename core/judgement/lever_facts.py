@@ -41,12 +41,26 @@ class Facts:
         """The newest gas shows acute hypercapnia."""
         return self.gas is not None and arms.acute_hypercapnia(self.gas, self.ctx.policy)
 
+    @cached_property
+    def with_pf(self) -> GasFigure | None:
+        """The newest gas with a P/F, none drawn off support."""
+        return next((g for g in reversed(self.ctx.gases) if g.pf_mmHg is not None and not g.off_support), None)
+
     @property
     def hypoxaemic(self) -> bool:
-        """The newest gas with a P/F is at or below 300, or SpO2 is below its range."""
-        with_pf = next((g for g in reversed(self.ctx.gases) if g.pf_mmHg is not None), None)
-        low = self.spo2 is not None and self.spo2.value < self.ctx.target.low
-        return low or (with_pf is not None and arms.hypoxaemia(with_pf, self.ctx.policy))
+        """The newest P/F on support is at or below 300, or SpO2 is below its range."""
+        return self.spo2_low or (self.with_pf is not None and arms.hypoxaemia(self.with_pf, self.ctx.policy))
+
+    @property
+    def spo2_low(self) -> bool:
+        """SpO2 is below its range on the oxygen that is given."""
+        return self.spo2 is not None and self.spo2.value < self.ctx.target.low
+
+    @property
+    def severe_oxygen_failure(self) -> bool:
+        """P/F at or below 200 without acute hypercapnia: EPAP may act even with SpO2 in its range."""
+        pf = self.with_pf.pf_mmHg if self.with_pf is not None else None
+        return pf is not None and pf <= self.ctx.policy.levers.epap_pf_mmHg.value and not self.acidotic
 
     @cached_property
     def _vitals(self) -> VitalsNear:

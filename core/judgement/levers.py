@@ -11,6 +11,7 @@ from core.judgement.context import Context
 from core.judgement.lever_facts import DECIDES, Facts
 from core.judgement.setting_change import number
 from core.judgement.shapes import LeverFigure
+from core.judgement.vitals_near import Found
 from core.record.message import Message, Value
 
 LONG_TI = frozenset({"neuromuscular", "chest wall", "obesity hypoventilation"})
@@ -46,7 +47,7 @@ def _fio2(f: Facts) -> LeverFigure:
     present = _say("present_oxygen", fio2=number(f.now.fio2), o2_flow=number(f.now.o2_flow))
     if f.spo2 is None:
         return _lever("fio2", False, [_say("spo2_not_known")], present)
-    facts: dict[str, Value] = {"spo2": f.spo2.value, "low": target.low, "high": target.high, "at": f.spo2.at}
+    facts = _saturation(f, f.spo2)
     if f.spo2.value > target.high and f.oxygen_given:
         return _lever("fio2", True, [Message("lever.oxygen_above_need", facts)], present)
     if f.spo2.value >= target.low:
@@ -55,6 +56,11 @@ def _fio2(f: Facts) -> LeverFigure:
     if f.now.fio2 >= 1.0:
         limits.append(_say("fio2_at_maximum"))
     return _lever("fio2", not f.now.fio2 >= 1.0, [Message("lever.spo2_below_range", facts)], present, limits)
+
+
+def _saturation(f: Facts, spo2: Found) -> dict[str, Value]:
+    """The SpO2 that every lever speaks of, with its range."""
+    return {"spo2": spo2.value, "low": f.ctx.target.low, "high": f.ctx.target.high, "at": spo2.at}
 
 
 def _mask(f: Facts) -> LeverFigure:
@@ -168,11 +174,30 @@ def _epap(f: Facts) -> LeverFigure:
     full = low >= limit
     if full:
         limits.append(_say("review_epap", epap=low, limit=limit))
-    why: list[Message] = []
-    if f.hypoxaemic:
-        why.append(_say("hypoxaemia"))
+    why = _recruiting(f)
     if f.ctx.indication == "obesity hypoventilation" and f.acidotic:
         why.append(_say("upper_airway"))
     if f.leak_over:
         limits.append(_say("leak_first", leak=f.leak.latest_L_per_min))
-    return _lever("epap", bool(why) and not full, why or [_say("oxygen_enough")], present, limits)
+    return _lever("epap", bool(why) and not full, why or _oxygen_enough(f), present, limits)
+
+
+def _recruiting(f: Facts) -> list[Message]:
+    """Why EPAP may act on oxygen: SpO2 below its range on the oxygen given, or P/F at or below 200 in hypoxaemic
+    failure. A P/F that is merely reduced while SpO2 keeps its range asks for nothing."""
+    why: list[Message] = []
+    if f.spo2 is not None and f.spo2_low:
+        why.append(Message("lever.spo2_below_range", _saturation(f, f.spo2)))
+    if f.severe_oxygen_failure and f.with_pf is not None:
+        limit = f.ctx.policy.levers.epap_pf_mmHg.value
+        why.append(_say("pf_low", pf=f.with_pf.pf_mmHg, at=f.with_pf.at, limit=limit))
+    return [*why, _say("hypoxaemia")] if why else []
+
+
+def _oxygen_enough(f: Facts) -> list[Message]:
+    """Why not: the same SpO2 as the oxygen lever shows, or that it is not known."""
+    if f.spo2 is None:
+        return [_say("spo2_not_known"), *([] if f.with_pf is None else [_say("oxygen_enough")])]
+    over = f.spo2.value > f.ctx.target.high
+    seen = [] if over else [Message("lever.spo2_in_range", _saturation(f, f.spo2))]
+    return [*seen, _say("oxygen_enough")]

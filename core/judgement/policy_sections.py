@@ -126,6 +126,7 @@ class Levers(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     mask_share_low: Limit
     rate_in_reach_per_min: Limit
     review_ti_s: Limit
+    epap_pf_mmHg: Limit
 
 
 class PressureLimit(msgspec.Struct, frozen=True, forbid_unknown_fields=True):

@@ -133,8 +133,34 @@ def test_a_longer_inspiration_never_in_copd() -> None:
 def test_epap_with_ipap_alike() -> None:
     lever = found("03:55 spo2 84")["epap"]
     assert lever.can_act
-    assert keys(lever)[:2] == ["hypoxaemia", "raise_ipap_alike"]
+    assert keys(lever)[:3] == ["spo2_below_range", "hypoxaemia", "raise_ipap_alike"]
     assert not found("03:55 spo2 84", start="mode BPAP-ST ipap 20 epap 8")["epap"].can_act
     assert not found("03:55 spo2 91")["epap"].can_act
     obese = found(ACIDOTIC, indication="obesity hypoventilation")["epap"]
     assert "upper_airway" in keys(obese)
+
+
+@pytest.mark.parametrize("spo2", [84, 88, 92, 97])
+def test_oxygen_and_epap_speak_of_one_saturation(spo2: int) -> None:
+    """A P/F of 211 in acute hypercapnia with SpO2 in range is no reason for EPAP; low SpO2 is one for both."""
+    figures = found(f"03:00 ph 7.19 paco2 91 pao2 59 fio2 28%\n03:55 spo2 {spo2}")
+    fio2, epap = figures["fio2"], figures["epap"]
+    assert epap.can_act == (spo2 < 88)
+    told = [m.values for lever in (fio2, epap) for m in lever.why if "spo2" in m.values]
+    assert all(values == told[0] for values in told)
+    assert len(told) == (2 if spo2 <= 92 else 1)
+
+
+@pytest.mark.parametrize(("pao2", "acts"), [(40, True), (80, True), (81, False), (118, False)])
+def test_epap_in_hypoxaemic_failure_from_a_pf_of_200(pao2: int, acts: bool) -> None:
+    """FiO2 0.4: P/F 100, 200, 202.5 and 295, each with SpO2 in its range."""
+    more = f"03:00 ph 7.44 paco2 36 pao2 {pao2} site arterial\n03:55 spo2 95"
+    epap = found(more, indication="pneumonia", start="mode BPAP-ST ipap 14 epap 6 fio2 40%")["epap"]
+    assert epap.can_act == acts
+    assert ("pf_low" in keys(epap)) == acts
+    tiring = more.replace("7.44 paco2 36", "7.30 paco2 60")
+    assert not found(tiring, indication="pneumonia", start="mode BPAP-ST ipap 14 epap 6 fio2 40%")["epap"].can_act
+
+
+def test_epap_without_a_saturation_says_so() -> None:
+    assert keys(found()["epap"])[0] == "spo2_not_known"
