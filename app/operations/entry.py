@@ -10,6 +10,7 @@ from app.operations.episode import check_known, checked_key, load
 from app.operations.outcome import Outcome
 from app.operations.policy import in_force
 from core.judgement.entry_doubts import gas_doubts
+from core.judgement.second_value import second_values
 from core.record.channels import Group, channel
 from core.record.entries import Action, Entry, NewEntry, from_reading
 from core.record.episode import Episode
@@ -269,6 +270,7 @@ def _questions(
     store: Store, episode: Episode, at: Instant, readings: Sequence[Reading]
 ) -> tuple[Message, ...]:
     asked = [doubt for r in readings for doubt in r.doubts]
+    asked += second_values(readings, at, episode.standing)
     if any(r.channel.group is Group.GAS for r in readings):
         sample = next((g for g in episode.gases if g.at == at), None)
         asked += gas_doubts(readings, SettingsInForce(episode).at(at), in_force(store), sample)

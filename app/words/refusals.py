@@ -13,6 +13,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "document.damaged": "Document {value} is not what was kept: its digest does not fit.",
     "document.unknown": "There is no document {value} in the store.",
     "doubt.salvaged": "It was saved from a damaged file, where nothing proves that it was not changed.",
+    "doubt.second_value":
+        "[[{channel:name} {first:of} is logged for this minute already ({at:time}). ]]Two values of one moment: "
+        "which one is right?",
     "doubt.unusual":
         "{channel:name} {value:of} is outside the usual {low:of} to {high:of}.",
     "entry.id_too_long": "The id '{value}' is too long: at most {accepted} characters are accepted.",

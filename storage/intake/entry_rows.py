@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import replace
 
+from core.record.channels import CHANNELS, Kind
 from core.record.entries import Action, Entry, NewEntry
 from core.record.instant import Instant
 from core.record.knowledge import standing
@@ -51,6 +52,7 @@ class EntryRows:
         self._find_contradictions(rows)
         rows = self._with_doubts(rows)
         self._find_two_values(rows)
+        rows = self._with_second_values(rows)
         return tuple(r.draft for r in rows)
 
     def _held_entries(self, episode: str) -> tuple[Entry, ...]:
@@ -201,6 +203,31 @@ class EntryRows:
                     "first": first.draft.entry.number,
                 }
                 self._findings.doubt(row.line, "value", _shown(row), Message("row.two_values", values))
+
+    def _with_second_values(self, rows: list[EntryRow]) -> list[EntryRow]:
+        """A row that gives another value than the store has for that very moment is taken and marked: nobody is there
+        to ask which is right."""
+        held: dict[str, dict[tuple[str, Instant], float | str | None]] = {}
+        out = list(rows)
+        for i, row in enumerate(rows):
+            e = row.draft.entry
+            if e.action is not Action.ASSERT or CHANNELS[e.channel].kind not in (Kind.NUMBER, Kind.CHOICE):
+                continue
+            if e.episode not in held:
+                stands = standing(self._held_entries(e.episode))
+                held[e.episode] = {(s.entry.channel, s.entry.at): _value(s.entry) for s in stands}
+            first = held[e.episode].get((e.channel, e.at))
+            if first is None or first == _value(e):
+                continue
+            values: dict[str, Value] = {"channel": e.channel, "first": first, "at": e.at}
+            self._findings.doubt(row.line, "value", _shown(row), Message("doubt.second_value", values))
+            if not e.doubt:
+                out[i] = replace(row, draft=replace(row.draft, entry=replace(e, doubt="doubt.second_value")))
+        return out
+
+
+def _value(e: NewEntry) -> float | str | None:
+    return e.words if e.number is None else e.number
 
 
 def _by_episode(rows: Iterable[EntryRow]) -> dict[str, list[tuple[int, EntryRow]]]:

@@ -8,6 +8,7 @@ from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
 from app.operations import entry, episode
+from app.words import sentence
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
 from storage.store import Store
@@ -61,6 +62,20 @@ def test_a_key_that_cannot_be_typed_again_is_refused(store: Store, key: str) -> 
     with pytest.raises(RecordError) as refused:
         entry.log_line(store, "AB", NOW, line("rr 20", key=key, new=True))
     assert refused.value.message.key == "episode.bad_key"
+
+
+def test_another_value_for_a_minute_that_has_one_is_asked_about(store: Store) -> None:
+    log(store, "01:10 ph 7.30 paco2 60 hco3 28.5", confirmed=True)
+    asked = entry.preview(store, "AB", NOW, line("01:10 ph 7.24")).value.questions
+    second = [m for m in asked if m.key == "doubt.second_value"]
+    assert [(m.values["channel"], m.values["first"]) for m in second] == [("ph", 7.30)]
+    assert sentence(second[0]).startswith("pH 7.30 is logged for this minute already (")
+    with pytest.raises(RecordError):
+        log(store, "01:10 ph 7.24")
+    same = entry.preview(store, "AB", NOW, line("01:10 ph 7.30")).value.questions
+    assert not [m for m in same if m.key == "doubt.second_value"]
+    other = entry.preview(store, "AB", NOW, line("01:11 ph 7.24")).value.questions
+    assert not [m for m in other if m.key == "doubt.second_value"]
 
 
 def test_a_soft_limit_is_asked_about(store: Store) -> None:
@@ -161,7 +176,7 @@ def _do(store: Store, step: str, last: entry.Recorded, n: int, *, standing: bool
     if step == "undo":
         return entry.undo(store, "AB", NOW, entry.UndoRequest("A", last.ids)).value
     if step == "log" or not standing:
-        return log(store, f"rr {20 + n}")
+        return log(store, f"rr {20 + n}", confirmed=True)
     current = store.episode("A").standing[-1].entry.id
     if step == "correct":
         return entry.correct(store, "AB", NOW, entry.CorrectionRequest("A", current, "x", str(25 + n))).value

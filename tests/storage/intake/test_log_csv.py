@@ -230,6 +230,21 @@ def test_two_values_of_one_moment_are_said(read: Reader) -> None:
     ]
 
 
+def test_another_value_than_the_store_has_for_the_moment_is_taken_and_marked(read: Reader, store: Store) -> None:
+    first = read(f"E1,{AT},ph,7.30,,AB,", f"E1,{AT},rr,20,/min,AB,", f"E1,{AT},mode,CPAP,,AB,")
+    store.append([d.entry for d in first.entries], by="AB", operation="intake", now=NOW)
+    again = read(
+        f"E1,{AT},ph,7.24,,CD,", f"E1,{AT},rr,20,/min,CD,", f"E1,{AT},mode,BPAP-S,,CD,", f"E1,{AT},hr,90,,CD,",
+        f"E2,{AT},ph,7.24,,CD,", existing=store,
+    )  # fmt: skip
+    assert [(d.line, d.message.key) for d in again.doubts] == [(2, "doubt.second_value"), (4, "doubt.second_value")]
+    assert again.doubts[0].message.values["first"] == 7.30
+    marked = {d.entry.channel for d in again.entries if d.entry.doubt}
+    assert marked == {"ph", "mode"}
+    assert {d.entry.doubt for d in again.entries if d.entry.episode == "E2"} == {""}
+    assert not again.refusals
+
+
 def test_the_definition_of_leak_becomes_an_entry_where_it_is_new(read: Reader, store: Store) -> None:
     header = HEADER + ",leak_definition"
     rows = [
