@@ -63,9 +63,16 @@ def _start_log() -> None:
     start_log(default_folder())
 
 
+def _close_on_signals(window: MainWindow) -> None:
+    from app.end_signals import close_on_signals
+
+    close_on_signals(window)
+
+
 def run_window(store: Path | None = None, passphrase: str | None = None, by: str = "") -> int:
     """Open the window on a store, or on the first page; returns when it is closed."""
     window = make_window()
+    _close_on_signals(window)
     window.show()
     QTimer.singleShot(0, _start_log)
     if by:
@@ -80,6 +87,7 @@ def run_window(store: Path | None = None, passphrase: str | None = None, by: str
 def run_demo() -> int:
     """Open the window on the sample shift in a throw-away store; returns when it is closed."""
     window = make_window()
+    _close_on_signals(window)
     window.show()
     QTimer.singleShot(0, _start_log)
     QTimer.singleShot(0, window.doers.file.do_sample_shift)
