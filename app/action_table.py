@@ -80,7 +80,7 @@ DEEDS: Final = (
          QT_TRANSLATE_NOOP("action", "After how many minutes without key or mouse the window locks."),
          needs_store=False),
     Deed("backups", "store", QT_TRANSLATE_NOOP("action", "Backups..."), ("Ctrl+Shift+A",),
-         QT_TRANSLATE_NOOP("action", "The backups taken by the hour, where they lie, and one more now."), parted=True),
+         QT_TRANSLATE_NOOP("action", "The backups taken by the hour, where they lie, one more now."), parted=True),
     Deed("restore", "store", QT_TRANSLATE_NOOP("action", "Restore a backup..."), ("Ctrl+Shift+R",),
          QT_TRANSLATE_NOOP("action", "Make a new store of a backup, and list what the old one holds beyond it."),
          needs_store=False),

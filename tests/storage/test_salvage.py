@@ -90,7 +90,8 @@ def test_of_damaged_pages_the_rest_is_saved_and_nothing_is_made_up(tmp_path: Pat
         try:
             found = salvage(path, tmp_path / f"b{n}.luff", passphrase, by="AB", now=NOW, cost=CHEAP)
         except StoreError as error:  # a page that names the tables: only a backup helps
-            assert error.message.key == "store.damaged"
+            if error.message.key != "store.damaged":
+                raise
             saved.append(0)
             continue
         with open_new(found, passphrase) as new:
