@@ -8,6 +8,8 @@ from app import formats
 from app.figure_groups import EXPECTED, figure_groups
 from app.figure_rows import FigureGroup, FigureRow
 from app.finding_names import lever_name
+from app.headline import headline, off_mask_word, state_now
+from app.theme import verdict_word
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from core.judgement.shapes import EpisodeFigures, ResponseFigure
@@ -18,7 +20,7 @@ _HIDDEN = frozenset({"label", "plan", "jobs", "handover_remark"})
 
 def episode_text(figures: EpisodeFigures, reader: Reader) -> str:
     """Everything computed for one episode, under headings."""
-    lines = FigureLines(reader)
+    lines = FigureLines(reader).of(figures)
     head = f"{figures.label} ({figures.episode}), as of {formats.wall(figures.as_of, reader.zone)}"
     parts = [head, "=" * len(head)]
     if figures.concern.why is not None:
@@ -30,6 +32,7 @@ def episode_text(figures: EpisodeFigures, reader: Reader) -> str:
 
 
 def _sections(f: EpisodeFigures, lines: FigureLines) -> Iterator[tuple[str, Iterator[str]]]:
+    yield "Now", _now(f, lines)
     yield "Support", iter((lines.settings(f.support), lines.on_mask(f.support), *_absent(f, lines)))
     yield "Profile", _profile(f, lines)
     yield "Flags", _flags(f, lines)
@@ -44,6 +47,21 @@ def _sections(f: EpisodeFigures, lines: FigureLines) -> Iterator[tuple[str, Iter
     warnings = [*f.warnings, *(w for g in f.gases for w in g.warnings)]
     if warnings:
         yield "To check", (sentence(w, lines.reader) for w in dict.fromkeys(warnings))
+
+
+def _now(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
+    """How the patient stands, in the words of the ward's view."""
+    gas = next((g for g in reversed(f.gases) if g.site != "venous"), None)
+    if off := off_mask_word(f, lines.reader.zone):
+        yield off[:1].upper() + off[1:]
+    if gas is not None:
+        yield f"State: {state_now(f, gas, lines.reader.gas_unit)}"
+    if (told := headline(f)) is not None:
+        yield f"Response: {told.word}"
+        if told.since_start is not None:
+            yield f"Since the start: {verdict_word(told.since_start)}"
+    if f.now.last_logged_at is not None:
+        yield f"Last logged: {formats.wall(f.now.last_logged_at, lines.reader.zone)}"
 
 
 def _group(group: FigureGroup, f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:

@@ -36,8 +36,8 @@ def _ward(page: WardPage) -> Iterator[str]:
     for row in page.rows:
         yield from _row(row)
     yield from ("", "DUE IN THE NEXT 4 H, AND OVERDUE")
-    for item in page.due or ("Nothing is due.",):
-        yield from _wrapped(item, "  ")
+    for item in (*page.due, page.skin) if page.due or page.skin else ("Nothing is due.",):
+        yield from _wrapped(item, "  ") if item else ()
     if page.missing:
         yield from ("", "MISSING FROM THE RECORD")
         for item in page.missing:
@@ -48,8 +48,8 @@ def _row(row: WardRow) -> Iterator[str]:
     yield ""
     change = f" ({row.change_of_state})" if row.change_of_state else ""
     yield from _wrapped(f"{row.number}. {row.label}: {row.state}{change}")
-    for text in (f"{row.who}. {row.limits}", row.support, row.response, *row.flags):
-        yield from _wrapped(text, "   ")
+    for text in (f"{row.who}. {row.limits}", row.support, row.response, *row.flags, row.action):
+        yield from _wrapped(text, "   ") if text else ()
     if row.remarks:
         yield from _wrapped(f"REMARK {row.remarks}", "   ")
 

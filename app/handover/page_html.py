@@ -53,10 +53,10 @@ class _Writer:
             translate("handover", "Open flags"),
         )
         yield self.table(heads, (self.ward_row(r) for r in page.rows), (16, 22, 36, 26))
-        yield self.heading(translate("handover", "Due, by time"), self.theme.type.emphasis)
-        yield from (
-            self.text(line) for line in page.due or (translate("handover", "Nothing due within 4 h."),)
-        )
+        yield self.heading(translate("handover", "Due, gases first"), self.theme.type.emphasis)
+        yield from (self.text(line) for line in page.due)
+        if page.skin or not page.due:
+            yield self.text(page.skin or translate("handover", "Nothing due within 4 h."))
         yield from (self.quiet(line) for line in page.missing)
 
     def ward_row(self, r: WardRow) -> tuple[str, ...]:
@@ -65,8 +65,9 @@ class _Writer:
         who = f"{link}<br>{quiet}{escape(r.who)}</span>"
         change = f"<br>{escape(r.change_of_state)}" if r.change_of_state else ""
         told = [escape(f) for f in r.flags] + ([f"{quiet}{escape(r.remarks)}</span>"] if r.remarks else [])
+        told += [f"<b>{escape(r.action)}</b>"] if r.action else []
         flags = "<br>".join(told) or f"{quiet}{escape(translate('handover', 'none'))}</span>"
-        support = f"{escape(r.support)}<br>{quiet}{escape(r.response)}</span>"
+        support = f"{escape(r.support)}<br>{escape(r.response)}"
         return who, escape(r.state) + change, support, flags
 
     def table(self, heads: Iterable[str], rows: Iterable[Iterable[str]], widths: Iterable[int]) -> str:

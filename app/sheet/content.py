@@ -10,19 +10,24 @@ from collections.abc import Iterator
 from dataclasses import replace
 
 from app import formats
-from app.finding_names import due_name, marker_name
+from app.finding_names import marker_name
+from app.headline import ever_acidotic
 from app.operations.handover import Handover
 from app.sheet.chart_data import shift_chart
+from app.sheet.due_lines import GAS, due_short, skin_line, ward_due
 from app.sheet.gas_table import gas_rows
 from app.sheet.shapes import ChangeLine, EpisodePage, Fact, FlagLine, SheetContent, WardPage, WardRow
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from core.figures.shift import ShiftFigures
-from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, Step
-from core.record.instant import HOUR
+from core.judgement.shapes import EpisodeFigures, FlagFigure, Step
+from core.record.instant import HOUR, MINUTE
 
 _STATES = {"severe": "Severe acidosis", "acidotic": "Acidotic", "resolved": "Not acidotic"}
 """A gas that is not acidotic may still be a bad one: in a heading "resolved" would say too much."""
+SKIN_OVERDUE = "skin_check_overdue"
+QUIET = 30 * MINUTE
+"""A record that ends so long before the shift does is said to."""
 MOST_LATER = 8
 """Values that came later are listed up to so many for each episode."""
 _STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
@@ -60,10 +65,14 @@ class _Writer:
         span = formats.span(shift.start, shift.end, self._reader.zone)
         if self._h.as_known_at is not None:  # on every page: a review must never be taken for the handover
             span += f", as known at {formats.wall(self._h.as_known_at, self._reader.zone)}"
+        ends = [quiet_since(s) for s in shift.episodes]
+        if ends and all(at is not None for at in ends):
+            span += f"; nothing logged since {self._moment(max(at for at in ends if at is not None))}"
         return WardPage(
             title, f"Shift {span}", self._see_first(),
             tuple(self._ward_row(n, s) for n, s in enumerate(shift.episodes, 1)),
-            tuple(self._ward_due()), tuple(self._ward_missing()),
+            tuple(ward_due(shift.episodes, self._reader)), tuple(self._ward_missing()),
+            skin_line(shift.episodes, self._reader),
         )  # fmt: skip
 
     def _see_first(self) -> str:
@@ -76,16 +85,25 @@ class _Writer:
         f, p = s.now, s.now.profile
         opened = sorted((x for x in s.flags_open if x.strongest), key=_strength)
         strong = [x for x in opened if x.tier != "remark"]
-        remarks = [x for x in opened if x.tier == "remark"]
+        remarks = [x for x in opened if x.tier == "remark" and x.marker != SKIN_OVERDUE]  # summed under what is due
         return WardRow(
             number, f.label, self._who(f), opened[0].tier if opened else "", self._standing(f),
             self._change_of_state(s), self._support_short(f), self._latest_response(f),
             tuple(self._flag_line(x) for x in strong), "; ".join(self._remark(x) for x in remarks),
-            "; ".join(self._due_short(d) for d in s.due),
+            "; ".join(due_short(d, self._reader) for d in s.due),
             f"Ceiling: {p.get('ceiling_of_care') or formats.ABSENT}. "
             f"Resuscitation: {p.get('resuscitation') or formats.ABSENT}.",
-            f.support.ended_at is not None,
+            f.support.ended_at is not None, self._action(s),
         )  # fmt: skip
+
+    def _action(self, s: ShiftFigures) -> str:
+        """The plan and the newest call, where a flag asks for a senior or a gas is overdue."""
+        escalate = any(x.tier == "escalate" for x in s.flags_open)
+        if not escalate and not any(d.what in GAS and d.state == "overdue" for d in s.due):
+            return ""
+        plan = str(s.now.profile.get("plan") or "none").rstrip(".")
+        called = f"{self._clock(s.told[-1].at)} {s.told[-1].words or 'somebody'}" if s.told else "nobody"
+        return f"Plan: {plan}. Told: {called.rstrip('.')}."
 
     def _support_short(self, f: EpisodeFigures) -> str:
         """Support and oxygen as short as a ward's list needs them."""
@@ -126,10 +144,14 @@ class _Writer:
         if not gases:
             return "No arterial or capillary gas recorded."
         last = gases[-1]
-        off = ", off support" if last.off_support else ""
+        state = _STATES.get(last.state or "", "State not known")
         pf = f", P/F {self._lines.pressure(last.pf_mmHg)}" if last.pf_mmHg is not None else ""
+        if f.now.oxygen_failure and f.now.pf_mmHg is not None:
+            first = "P/F" if ever_acidotic(f) else "Hypoxaemic: P/F"
+            state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}, {_lowered(state)}", ""
+        off = ", last gas drawn off support" if last.off_support else ""
         return (
-            f"{_STATES.get(last.state or '', 'State not known')}{off}: pH {self._lines.ph(last)}, "
+            f"{state}{off}: pH {self._lines.ph(last)}, "
             f"PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
         )
 
@@ -148,7 +170,7 @@ class _Writer:
         if judged:
             r = judged[-1]
             anchor = "support started" if r.anchor == "start" else self._lines.anchor(r)
-            text = f"{self._moment(r.anchor_at)} {anchor}. {_opened(self._lines.verdict(r, brief=True))}"
+            text = f"{self._moment(r.anchor_at)} {anchor}. {_opened(self._lines.of(f).verdict(r, brief=True))}"
         if waiting is not None:
             text += f" Change of {self._moment(waiting.anchor_at)}: response not yet known."
         return text.strip() or "No response judged yet."
@@ -158,15 +180,6 @@ class _Writer:
 
     def _remark(self, f: FlagFigure) -> str:
         return f"{marker_name(f.marker, self._reader)}, since {self._moment(f.since)}"
-
-    def _ward_due(self) -> Iterator[str]:
-        items = [(d, s.now.label) for s in self._h.shift.episodes for d in s.due]
-        for d, label in sorted(items, key=lambda x: (x[0].due_until, x[1])):
-            yield f"{label}: {self._due_short(d)}"
-
-    def _due_short(self, d: DueFigure) -> str:
-        state = {"overdue": " OVERDUE", "awaiting result": " (sent, awaiting result)"}.get(d.state, "")
-        return f"{due_name(d.what, self._reader)} by {self._moment(d.due_until)}{state}"
 
     def _ward_missing(self) -> Iterator[str]:
         """What nobody recorded and the next shift will ask for."""
@@ -188,9 +201,9 @@ class _Writer:
         opened = sorted(s.flags_open, key=_strength)
         other = [x for x in (*s.flags_raised, *s.flags_ended) if x not in opened]
         return EpisodePage(
-            f.label, self._subtitle(f), number, opened[0].tier if opened else "", self._standing(f),
+            f.label, self._subtitle(s), number, opened[0].tier if opened else "", self._standing(f),
             tuple(self._facts(s)), self._support_now(f), tuple(self._changes(s)),
-            shift_chart(record, f, s.start, s.end, self._reader), gas_rows(s, self._lines),
+            shift_chart(record, f, s.start, self._chart_end(s), self._reader), gas_rows(s, self._lines.of(f)),
             self._lines.leak(f.leak) + self._interface(f),
             tuple(self._flag(x) for x in (*opened, *dict.fromkeys(other))),
             tuple(self._lines.due(d) for d in s.due), tuple(self._care(s)),
@@ -199,11 +212,19 @@ class _Writer:
             str(f.profile.get("handover_remark") or ""), tuple(self._to_check(s)),
         )  # fmt: skip
 
-    def _subtitle(self, f: EpisodeFigures) -> str:
+    @staticmethod
+    def _chart_end(s: ShiftFigures) -> int:
+        """Where the record ends before the shift does, so does the chart: nothing is known after it."""
+        at = quiet_since(s)
+        return at if at is not None and at > s.start else s.end
+
+    def _subtitle(self, s: ShiftFigures) -> str:
+        f, at = s.now, quiet_since(s)
+        quiet = f". Nothing logged since {self._moment(at)}" if at is not None else ""
         place = f.profile.get("location") or "place not recorded"
         identifier = f.profile.get("identifier")
         key = f"Episode {f.episode}" + (f", {identifier}" if identifier else "")
-        return f"{self._who(f)}. {place}. {key}"
+        return f"{self._who(f)}. {place}. {key}{quiet}"
 
     def _facts(self, s: ShiftFigures) -> Iterator[Fact]:
         f, p = s.now, s.now.profile
@@ -243,7 +264,8 @@ class _Writer:
             what = self._lines.anchor(r)
             if with_it := beside.pop(r.anchor_at, None):
                 what += f"; with it {self._lines.steps(with_it)}"
-            line = ChangeLine(self._when(r.first_at, r.anchor_at), what, _opened(self._lines.verdict(r)), r.headline)
+            told = _opened(self._lines.of(s.now).verdict(r))
+            line = ChangeLine(self._when(r.first_at, r.anchor_at), what, told, r.headline)
             rows.append((r.first_at, line))
         for at, steps in beside.items():
             rows.append((at, ChangeLine(self._moment(at), self._lines.steps(steps), "Not judged by itself.")))
@@ -276,7 +298,7 @@ class _Writer:
 
     def _to_check(self, s: ShiftFigures) -> Iterator[str]:
         if s.recorded_late and not self._h.imported:
-            yield f"{s.recorded_late} entries of this shift were recorded more than 1 h late."
+            yield f"{s.recorded_late} typed entries of this shift were recorded more than 1 h late."
         yield from self._came_later(s)
         warnings = [*s.now.warnings, *(w for g in s.gases for w in g.warnings)]
         yield from dict.fromkeys(sentence(w, self._reader) for w in warnings)
@@ -300,8 +322,20 @@ class _Writer:
         return self._reader.time(at)
 
 
+def quiet_since(s: ShiftFigures) -> int | None:
+    """When the record of a running episode ended, where that is well before the shift's end."""
+    at = s.now.now.last_logged_at
+    if at is None or s.now.support.ended_at is not None or s.end - at <= QUIET:
+        return None
+    return at
+
+
 def _strength(f: FlagFigure) -> tuple[int, int]:
     return (_STRENGTH.get(f.tier, 3), f.since)
+
+
+def _lowered(text: str) -> str:
+    return text[:1].lower() + text[1:]
 
 
 def _opened(text: str) -> str:

@@ -57,7 +57,8 @@ def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bo
 
     hco3 = g.hco3_mmol_L if g.hco3_mmol_L is not None else g.hco3_calculated_mmol_L
     mark = "" if g.hco3_mmol_L is not None or hco3 is None else "c"
-    marks = [m for m in lines.gas_marks(g) if m != g.state]
+    state = lines.state(g.state) if g.state else ""
+    marks = [m for m in lines.gas_marks(g) if m != state]
     return GasRow(
         formats.clock(g.at, lines.reader.zone),
         g.site[:3] + ("?" if g.site_assumed else ""),
@@ -66,7 +67,7 @@ def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bo
         _pressure_change(j.delta_paco2_mmHg if j else None, unit),
         pressure(g.pao2_mmHg), NO_VALUE if hco3 is None else formats.fixed(hco3, 1) + mark,
         pressure(g.pf_mmHg), NO_VALUE if g.fio2 is None else formats.fraction(g.fio2),
-        ", ".join([g.state or "not known", *marks]), _verdict(j), is_before,
+        ", ".join([state or "not known", *marks]), _verdict(j), is_before,
     )  # fmt: skip
 
 
@@ -80,7 +81,7 @@ def _pressure_change(value: float | None, unit: str) -> str:
 
 def _verdict(j: JudgedGas | None) -> str:
     if j is None:
-        return "judges no change"
+        return "not used for a verdict"
     timing = {"early": ", early", "late": ", late"}.get(j.timing, "")
     lost = ", gain lost" if j.since_start.gain_lost else ""
-    return f"{j.verdict or 'not judged'} ({formats.minutes(j.minutes)}{timing}){lost}"
+    return f"{j.verdict or 'not judged'}{lost} ({formats.minutes(j.minutes)}{timing})"

@@ -53,6 +53,8 @@ class WardRow:
     due: str
     limits: str
     ended: bool = False
+    action: str = ""
+    """What is planned and who was told, where something is to be done; "" elsewhere."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +67,8 @@ class WardPage:
     rows: tuple[WardRow, ...]
     due: tuple[str, ...]
     missing: tuple[str, ...]
+    skin: str = ""
+    """All checks of the skin that are due, in one line."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -36,7 +36,9 @@ class RowBlock:
         return taken <= width
 
     def _flags(self) -> list[tuple[str, str, Style]]:
+        """The flags, then what is planned and who was told, which has no tier, then the remarks."""
         found = [(f.partition(" ")[0].lower(), f.partition(" ")[2], STRONG) for f in self.row.flags]
+        found += [("", self.row.action, STRONG)] if self.row.action else []
         return [*found, ("remark", self.row.remarks, BODY)] if self.row.remarks else found
 
     def _flag_lines(self, press: Press, width: float) -> list[list[tuple[str, str, Style]]]:
@@ -105,8 +107,10 @@ class RowBlock:
         return y
 
     def _draw_flag(self, press: Press, x: float, y: float, width: float, tier: str, words: str, style: Style) -> None:
-        draw_tier(press, x, y - press.gap(1), press.gap(_TIER), tier)
-        press.text(x + press.gap(_TIER + 4), y, width - press.gap(_TIER + 4), words, style)
+        if tier:
+            draw_tier(press, x, y - press.gap(1), press.gap(_TIER), tier)
+        left = press.gap(_TIER + 4) if tier else 0.0
+        press.text(x + left, y, width - left, words, style)
 
 
 @dataclass(frozen=True, slots=True)
@@ -143,7 +147,7 @@ class DueList:
 
     def _style(self, item: str) -> Style:
         size = BODY.size if len(self.items) <= _MANY else SMALL.size
-        return Style(size, item.endswith("OVERDUE"))
+        return Style(size, "OVERDUE" in item)
 
     def _width(self, press: Press, width: float) -> float:
         return (width - press.gap(10) * (self._count() - 1)) / self._count()
@@ -165,8 +169,11 @@ def ward_blocks(page: WardPage) -> list[Block]:
     blocks: list[Block] = [SeeFirst(page.see_first)]
     blocks.append(Heading("All episodes, in order of concern", f"{len(page.rows)} in this shift"))
     blocks += [RowBlock(r) for r in page.rows] or [Text("No episode stood in this shift.")]
-    blocks.append(Heading("Due in the next 4 h, and overdue", "in order of time"))
-    blocks.append(DueList(page.due) if page.due else Text("Nothing is due."))
+    blocks.append(Heading("Due in the next 4 h, and overdue", "gases first, the longest overdue on top"))
+    if page.due:
+        blocks.append(DueList(page.due))
+    if page.skin or not page.due:
+        blocks.append(Text(page.skin or "Nothing is due.", SMALL if page.skin else BODY))
     if page.missing:
         blocks.append(Heading("Missing from the record"))
         blocks.append(Text(" ".join(page.missing), SMALL))

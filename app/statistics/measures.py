@@ -111,7 +111,7 @@ def _gases(s: WardStatistics) -> Iterator[Measure]:
         (translate("statistics", "Taken inside a response window (30 to 120 min)"), g.in_window),
         (translate("statistics", "Early (under 30 min)"), g.early),
         (translate("statistics", "Late (over 120 min)"), g.late),
-        (translate("statistics", "Judging no change"), g.judges_none),
+        (translate("statistics", "Not used for a verdict"), g.judges_none),
     )
     beside = translate("statistics", "arterial and capillary; venous beside them: {count}").format(count=g.venous)
     yield Measure(group, translate("statistics", "Gases"), g.total, note=beside)

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from app import formats
 from app.words import Reader, sentence
 from app.words.template import quantity_name
 from core.judgement.shapes import (
     DueFigure,
+    EpisodeFigures,
     FlagFigure,
     GasFigure,
     JudgedGas,
@@ -37,6 +38,17 @@ class FigureLines:
     """Writes figures for one reader."""
 
     reader: Reader
+    ever_acidotic: bool = True
+    """Whether there was an acidosis that could have resolved."""
+
+    def of(self, f: EpisodeFigures) -> FigureLines:
+        """The same for one episode, whose states depend on what was before."""
+        acidotic = f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)
+        return replace(self, ever_acidotic=acidotic)
+
+    def state(self, state: str) -> str:
+        """The state of a gas; what never was acidotic has not resolved."""
+        return self.tr("not acidotic" if state == "resolved" and not self.ever_acidotic else state)
 
     def tr(self, text: str) -> str:
         """A phrase in the reader's language."""
@@ -72,9 +84,11 @@ class FigureLines:
         """Since when support runs, and hours on the mask."""
         if s.since is None:
             return self.tr("start of support not recorded")
-        text = f"{self.tr('since')} {formats.wall(s.since, self.reader.zone)}"
+        text = f"{self.tr('support since')} {formats.wall(s.since, self.reader.zone)}"
+        if s.last_change_at is not None and s.last_change_at > s.since and s.ended_at is None:
+            text += f"; {self.tr('these settings since')} {self.reader.time(s.last_change_at)}"
         if s.hours_on_mask is not None:
-            text += f", {formats.hours(s.hours_on_mask)} {self.tr('on the mask')}"
+            text += f"; {formats.hours(s.hours_on_mask)} {self.tr('on the mask')}"
         if s.hours_on_mask_last_24h is not None:
             text += f" ({formats.hours(s.hours_on_mask_last_24h)} {self.tr('in the last 24 h')})"
         if s.ended_at is not None:
@@ -128,9 +142,9 @@ class FigureLines:
 
     def gas_marks(self, g: GasFigure) -> list[str]:
         """State and doubts of a gas, as words."""
-        marks = ((g.off_support, "off support"), (g.consistent is False, "does not agree with itself"),
+        marks = ((g.off_support, "drawn off support"), (g.consistent is False, "does not agree with itself"),
                  (g.doubt, "doubtful"), (g.corrected, "corrected"), (g.disputed, "disputed"))  # fmt: skip
-        state = [self.tr(g.state)] if g.state else []
+        state = [self.state(g.state)] if g.state else []
         return state + [self.tr(word) for holds, word in marks if holds]
 
     def why(self, name: str, reasons: Reasons, field: str) -> str:
@@ -178,15 +192,28 @@ class FigureLines:
         return ", ".join([*words[:1], *(_lowered(w) for w in words[1:])])
 
     def verdict(self, r: ResponseFigure, *, brief: bool = False) -> str:
-        """The headline with the gas it rests on, by how much, after how long; `brief` leaves out its state."""
-        judged = next((g for g in r.gases if g.at == r.headline_gas_at), None)
+        """The headline with the gas it rests on, by how much, after how long; `brief` leaves out its state.
+
+        A gain that was lost and the sum since the start stand beside it: alone it could hide a relapse.
+        """
+        judged = next((g for g in reversed(r.gases) if g.at == r.headline_gas_at), None)
         if judged is None or judged.verdict is None:
             why = " ".join(sentence(m, self.reader) for m in r.why)
             return f"{self.tr(r.headline)}. {why}".rstrip(". ") + "."
-        text = f"{self.tr(r.headline)}: {self.deltas(judged, with_state=not brief)}"
+        text = f"{self.headline(r, judged)}: {self.deltas(judged, with_state=not brief)}"
         agree = {judged.co2_arm, judged.oxygen_arm} - {None} == {judged.verdict}
         arms = "" if brief and agree else self.arms(judged)
         return f"{text} ({arms})." if arms else f"{text}."
+
+    def headline(self, r: ResponseFigure, judged: JudgedGas) -> str:
+        """The verdict with a gain that was lost, and the verdict since the start where it is another."""
+        since = judged.since_start
+        text = self.tr(r.headline)
+        if r.gain_lost or since.gain_lost:
+            text += f", {self.tr('gain lost')}"
+        if since.verdict is not None and since.verdict != r.headline:
+            text += f" ({self.tr('since the start')}: {self.tr(since.verdict)})"
+        return text
 
     def deltas(self, g: JudgedGas, *, with_state: bool = True) -> str:
         """By how much a gas differs from the baseline, and when it was taken."""
@@ -199,7 +226,7 @@ class FigureLines:
             parts.append(f"P/F {self.pressure(g.delta_pf_mmHg, sign=True)}")
         timing = {"early": self.tr("early"), "late": self.tr("late")}.get(g.timing, "")
         when = f"{self.tr('after')} {formats.minutes(g.minutes)}{', ' + timing if timing else ''}"
-        state = f", {self.tr('gas')} {self.tr(g.state)}" if g.state and with_state else ""
+        state = f", {self.tr('gas')} {self.state(g.state)}" if g.state and with_state else ""
         return f"{', '.join(parts) or self.tr('no difference known')} {when}{state}"
 
     def arms(self, g: JudgedGas) -> str:

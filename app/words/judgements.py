@@ -158,7 +158,10 @@ LEVERS: Final[dict[str, str]] = {
     "lever.upper_airway": "EPAP holds the upper airway open.",
 }  # fmt: skip
 
-_CLASSES = "no_axis_adverse=no axis adverse;between=between no axis adverse and the worst corner;worst_corner=worst corner"
+_CLASSES = (
+    "no_axis_adverse=no axis adverse;between=between no axis adverse and the worst corner;"
+    "worst_corner=worst corner"
+)
 
 OTHER: Final[dict[str, str]] = {
     "copd_failure.risk":

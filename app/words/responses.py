@@ -31,7 +31,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.baseline_early": "The baseline, of {gas_at:time}, is an early gas: not steady.",
     "response.capillary": "Capillary gas: stands for arterial in pH and PCO2, not in PO2.",
     "response.early": "Early gas, less than 30 min after: not steady.",
-    "response.off_support": "The gas of {gas_at:time} was taken off support: it judges no change.",
+    "response.off_support": "The gas of {gas_at:time} was taken off support: it is not used for a verdict.",
     "response.venous_only": "The gas of {gas_at:time} is venous: no verdict for arterial.",
     "response.by_spo2_alone": "The oxygen arm answers by SpO2 alone.",
     "response.compared":

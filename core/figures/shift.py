@@ -65,7 +65,7 @@ class ShiftFigures:
     events: tuple[Event, ...] = ()
     told: tuple[Event, ...] = ()
     recorded_late: int = 0
-    """Entries of the shift that were recorded more than an hour after they happened."""
+    """Typed entries of the shift that were recorded more than an hour after they happened; a file's are none."""
     began: bool = False
     ended: bool = False
 
@@ -186,5 +186,10 @@ def _events_of(episode: Episode, channel: str, start: Instant, end: Instant) -> 
 
 
 def _recorded_late(episode: Episode, start: Instant, end: Instant) -> int:
-    entries = (s.entry for s in episode.standing)
-    return sum(_inside(e.at, start, end) and e.recorded_at - e.at > HOUR for e in entries)
+    """A line typed is of one moment: entries of several moments recorded at once came in a file's batch."""
+    entries = [s.entry for s in episode.standing]
+    moments: dict[Instant, set[Instant]] = {}
+    for e in entries:
+        moments.setdefault(e.recorded_at, set()).add(e.at)
+    typed = (e for e in entries if len(moments[e.recorded_at]) == 1)
+    return sum(_inside(e.at, start, end) and e.recorded_at - e.at > HOUR for e in typed)

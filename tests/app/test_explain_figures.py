@@ -157,7 +157,7 @@ def test_a_score_lists_value_points_and_time_and_says_for_whom():
     rox = explain_score("rox", score_in(f, "rox"), Reader(ZONE), f.as_of)
     assert {name for name, _, _ in rox.inputs} == {"SpO2", "FiO2", "Respiratory rate"}
     chart = explain_score("copd_failure", score_in(f, "copd_failure"), Reader(ZONE), f.as_of)
-    assert chart.title.endswith("risk class: between")
+    assert chart.title.endswith("risk class: between no axis adverse and the worst corner")
     assert ("APACHE II", "missing", "") in chart.inputs
     assert any("step 2 on its axis" in value for _, value, _ in chart.inputs)
 

@@ -32,7 +32,7 @@ def test_doubts_and_gaps_are_said():
     text = episode_text(sample_ward()[0], Reader(ZONE))
     assert "    ! Tidal volume doubtful: leak over 30 L/min" in text
     assert "No value (holds on room air only): A-a gradient expected for age" in text
-    assert "COPD failure chart: risk class: between (missing: APACHE II)" in text
+    assert "COPD failure chart: risk class: between no axis adverse and the worst corner (missing: APACHE II)" in text
 
 
 def test_nothing_expected_or_interpolated_is_in_text_that_people_paste():

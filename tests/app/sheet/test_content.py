@@ -6,11 +6,13 @@ from pathlib import Path
 
 import pytest
 
+from app import demo
 from app.operations import entry, episode
 from app.operations import handover as operations
 from app.operations.handover import Handover
+from app.plain_handover import handover_text
 from app.sheet.content import sheet_content
-from app.sheet.shapes import EpisodePage, SheetContent
+from app.sheet.shapes import EpisodePage, SheetContent, WardRow
 from app.words import Reader
 from core.record.instant import HOUR, parse
 from core.record.message import RecordError
@@ -77,6 +79,71 @@ def test_a_change_that_is_not_judged_says_why(tmp_path: Path) -> None:
 def test_a_gas_that_is_not_acidotic_is_not_called_resolved_in_a_heading(tmp_path: Path) -> None:
     _, page = one(tmp_path, "00:30 ph 7.42 paco2 38 pao2 55 gas_fio2 60 site arterial")
     assert page.standing.startswith("Not acidotic: pH 7.42, PaCO2 38 mmHg, P/F 92 mmHg")
+    assert page.gases[0].state == "not acidotic"
+    assert page.gases[0].verdict == "not used for a verdict"
+
+
+def test_a_gas_off_support_is_the_gas_and_not_the_patient(tmp_path: Path) -> None:
+    _, page = one(
+        tmp_path,
+        "00:40 bpap-st 14/5 28", "03:10 mask off", "03:50 ph 7.31 paco2 60 site arterial", "04:10 mask on",
+    )  # fmt: skip
+    assert page.standing.startswith("Acidotic, last gas drawn off support: pH 7.31")
+
+
+def test_oxygen_that_fails_comes_first(content: SheetContent) -> None:
+    assert row(content, "Bay A 1").state.startswith("Hypoxaemic: P/F 107 mmHg, not acidotic: pH 7.40")
+    page = next(p for p in content.episodes if p.label == "Bay A 1")
+    assert {g.state for g in page.gases} == {"not acidotic"}
+
+
+def row(content: SheetContent, label: str) -> WardRow:
+    return next(r for r in content.ward.rows if r.label == label)
+
+
+def test_a_relapse_and_the_sum_since_the_start_stand_on_the_first_page(content: SheetContent) -> None:
+    assert "Better, gain lost: pH" in row(content, "Bed 5").response
+    assert "No clear change (since the start: worse): pH" in row(content, "Bed 4").response
+    assert "No clear change (since the start: better): pH" in row(content, "Bed 2").response
+
+
+def test_plan_and_call_stand_on_the_first_page_where_something_is_to_be_done(content: SheetContent) -> None:
+    assert row(content, "Bed 4").action.startswith("Plan: If pH is below 7.25 on the next gas: intensive care")
+    assert "Told: 04:37 medical registrar" in row(content, "Bed 4").action
+    assert row(content, "Bay A 4").action == "Plan: none. Told: nobody."
+    assert row(content, "Bed 1").action == ""
+    text = handover_text(content)
+    assert "Plan: If pH is below 7.25" in text.partition("DUE IN THE NEXT")[0]
+
+
+def test_gases_are_due_first_the_longest_overdue_on_top_and_skin_checks_in_one_line(content: SheetContent) -> None:
+    due = content.ward.due
+    gases = [n for n, line in enumerate(due) if "lood gas" in line]
+    assert gases == list(range(len(gases)))
+    assert due[0] == "Bay A 4: Repeat blood gas 2 h 08 min OVERDUE"
+    late = ["OVERDUE" in line for line in due[: len(gases)]]
+    assert late == sorted(late, reverse=True)
+    assert not any("kin check" in line for line in due)
+    assert content.ward.skin.startswith("Skin checks overdue: Bed 2, Bay A 2, ")
+    assert "Skin checks to come: Bed 1 by 05:32" in content.ward.skin
+    assert content.ward.skin.split()[-1] in handover_text(content)
+
+
+def test_a_shift_that_ends_after_the_record_says_so_and_its_chart_ends_there(night_store: Store) -> None:
+    end = demo.demo_now() + 2 * HOUR
+    request = operations.HandoverRequest(end - 12 * HOUR, end)
+    made = operations.prepare(night_store, "AB", demo.demo_now(), request).value
+    found = sheet_content(made, Reader(demo.ZONE))
+    assert found.ward.shift.endswith("; nothing logged since 05:30")
+    page = next(p for p in found.episodes if p.label == "Bed 4")
+    shift = next(s for s in made.shift.episodes if s.now.label == "Bed 4")
+    assert page.chart.end == shift.now.now.last_logged_at < end
+    assert "Nothing logged since 05:" in page.subtitle
+
+
+def test_a_file_taken_in_late_is_not_counted_as_typed_late(tmp_path: Path) -> None:
+    _, typed = one(tmp_path, "01:00 rr 24 hr 100")
+    assert typed.to_check[0] == "2 typed entries of this shift were recorded more than 1 h late."
 
 
 def test_off_the_mask_is_said_loudly(tmp_path: Path) -> None:

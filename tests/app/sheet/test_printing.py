@@ -71,7 +71,8 @@ def test_the_wards_page_says_all_of_every_episode(printed: tuple[str, bytes], co
             tier, _, words = flag.partition(" ")
             assert _flat(tier + words) in text
         assert _flat(row.remarks) in text
-    for item in (*ward.due, *ward.missing):
+    assert all(_flat(r.action) in text for r in ward.rows)
+    for item in (*ward.due, ward.skin, *ward.missing):
         assert _flat(item) in text, item
 
 
@@ -164,7 +165,7 @@ def test_markup_in_a_note_stays_text(content: SheetContent) -> None:
 
 
 def test_a_ward_with_nobody_says_so(content: SheetContent) -> None:
-    ward = replace(content.ward, rows=(), due=(), missing=(), see_first="No episode stands out.")
+    ward = replace(content.ward, rows=(), due=(), missing=(), skin="", see_first="No episode stands out.")
     data, pages = pdf_bytes(replace(content, ward=ward, episodes=()))
     assert pages == 1
     for words in ("No episode stood in this shift.", "Nothing is due."):
