@@ -1,13 +1,17 @@
 """A shift's figures: what lies in it and what does not, and nothing from after its end."""
 
+from dataclasses import replace
+
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
 from core.figures.shift import episode_shift, stands_in_shift, ward_shift
 from core.judgement.policy import shipped_policy
+from core.record.episode import build_episode
 from core.record.instant import HOUR, MINUTE
-from tests.support.log import episode, moment
+from core.record.knowledge import standing
+from tests.support.log import entries, episode, moment
 
 POLICY = shipped_policy()
 START, END = moment("-19:30"), moment("07:30")
@@ -109,3 +113,14 @@ def test_a_shift_knows_nothing_after_its_end(minutes: int) -> None:
     end = START + (minutes + 1) * MINUTE
     whole = episode(NIGHT)
     assert episode_shift(whole, START, end, POLICY) == episode_shift(whole.until(end), START, end, POLICY)
+
+
+def late_by(log: str, recorded_at: str) -> int:
+    made = [replace(e, recorded_at=moment(recorded_at)) for e in entries(log)]
+    return episode_shift(build_episode("E1", standing(made)), START, END, POLICY).recorded_late
+
+
+def test_what_was_typed_late_is_counted_and_what_a_file_brought_is_not() -> None:
+    assert late_by("01:00 rr 24 hr 100", "03:00") == 2
+    assert late_by("02:30 rr 24", "03:00") == 0
+    assert late_by("01:00 rr 24\n01:30 rr 26\n02:00 rr 28", "05:00") == 0
