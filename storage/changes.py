@@ -48,7 +48,7 @@ def changes_between(connection: sa.Connection, seq: int) -> Changes:
             channels.setdefault(episode, set()).add(channel)
         if target:
             replaced.add(target)
-    for episode, channel in _branches(connection, replaced):
+    for episode, channel in branches(connection, replaced):
         channels.setdefault(episode, set()).add(channel)
     for episode, channel in connection.execute(sa.select(c.episode_id, c.channel).where(c.seq > seq)):
         channels.setdefault(episode, set()).add(channel)
@@ -63,7 +63,7 @@ def changes_between(connection: sa.Connection, seq: int) -> Changes:
     )
 
 
-def _branches(connection: sa.Connection, replaced: set[str]) -> Iterator[tuple[str, str]]:
+def branches(connection: sa.Connection, replaced: set[str]) -> Iterator[tuple[str, str]]:
     """Where else an entry's replacements stand: of two, the later wins, so a new one can void a value elsewhere."""
     e = s.entry.c
     seen: set[str] = set()

@@ -7,6 +7,7 @@ import sqlalchemy as sa
 from core.record.entries import Action
 from core.record.knowledge import standing
 from storage import schema as s
+from storage.changes import branches
 from storage.draft_batch import DraftBatch, Receipt
 from storage.reading_ledger import channel_entries, episode_entries
 
@@ -37,6 +38,8 @@ def _touched_ends(connection: sa.Connection, draft: DraftBatch) -> set[str]:
     if moved:
         query = sa.select(s.entry.c.moved_from).where(s.entry.c.replaces.in_(moved))
         touched |= {row[0] for row in connection.execute(query) if row[0]}
+    replaced = {d.entry.replaces for d in draft.entries if d.entry.channel == ENDS and d.entry.replaces}
+    touched |= {episode for episode, _ in branches(connection, replaced)}
     return touched
 
 

@@ -277,3 +277,17 @@ def test_a_store_opened_for_reading_takes_nothing(store: Store) -> None:
         assert numbers(reader) == [20]
         with pytest.raises(StoreError, match=r"store.read_only"):
             log(reader, rr(21))
+
+
+def test_an_end_that_a_later_replacement_voids_elsewhere_opens_that_episode_again(store: Store) -> None:
+    def end(episode: str, minute: int, action: Action = Action.ASSERT, replaces: str = "") -> str:
+        at = NOW + minute * MINUTE
+        new = NewEntry(episode, "ended_at", at, float(at), action=action, replaces=replaces, reason="r")
+        return store.append([new], by="AB", operation="log", now=NOW).ids[0]
+
+    first = end("E1", 1)
+    end("E2", 1, Action.MOVE, first)
+    assert store.open_episode_keys() == ("E1",)
+    end("E1", 2, Action.CORRECT, first)  # of two replacements the later wins: E2 has no end any more
+    assert store.open_episode_keys() == ("E2",)
+    assert store.verify() == ()
