@@ -32,6 +32,8 @@ def _wrapped(text: str, indent: str = "") -> list[str]:
 
 def _ward(page: WardPage) -> Iterator[str]:
     yield from (f"{page.title.upper()}. {page.shift}", "=" * WIDTH)
+    if page.quiet:
+        yield page.quiet[:1].upper() + page.quiet[1:]
     yield from _wrapped(f"SEE FIRST: {page.see_first}")
     for row in page.rows:
         yield from _row(row)

@@ -44,6 +44,8 @@ class _Writer:
     def ward(self, content: SheetContent) -> Iterator[str]:
         page = content.ward
         yield self.heading(page.shift, self.theme.type.title)
+        if page.quiet:
+            yield self.text(page.quiet[:1].upper() + page.quiet[1:])
         first = translate("handover", "See first: {who}").format(who=page.see_first)
         yield self.heading(first, self.theme.type.emphasis)
         heads = (

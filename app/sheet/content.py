@@ -65,14 +65,14 @@ class _Writer:
         span = formats.span(shift.start, shift.end, self._reader.zone)
         if self._h.as_known_at is not None:  # on every page: a review must never be taken for the handover
             span += f", as known at {formats.wall(self._h.as_known_at, self._reader.zone)}"
-        ends = [quiet_since(s) for s in shift.episodes]
+        ends, quiet = [quiet_since(s) for s in shift.episodes], ""
         if ends and all(at is not None for at in ends):
-            span += f"; nothing logged since {self._moment(max(at for at in ends if at is not None))}"
+            quiet = f"nothing logged since {self._moment(max(at for at in ends if at is not None))}"
         return WardPage(
             title, f"Shift {span}", self._see_first(),
             tuple(self._ward_row(n, s) for n, s in enumerate(shift.episodes, 1)),
             tuple(ward_due(shift.episodes, self._reader)), tuple(self._ward_missing()),
-            skin_line(shift.episodes, self._reader),
+            skin_line(shift.episodes, self._reader), quiet,
         )  # fmt: skip
 
     def _see_first(self) -> str:
@@ -219,12 +219,11 @@ class _Writer:
         return at if at is not None and at > s.start else s.end
 
     def _subtitle(self, s: ShiftFigures) -> str:
-        f, at = s.now, quiet_since(s)
-        quiet = f". Nothing logged since {self._moment(at)}" if at is not None else ""
+        f = s.now
         place = f.profile.get("location") or "place not recorded"
         identifier = f.profile.get("identifier")
         key = f"Episode {f.episode}" + (f", {identifier}" if identifier else "")
-        return f"{self._who(f)}. {place}. {key}{quiet}"
+        return f"{self._who(f)}. {place}. {key}"
 
     def _facts(self, s: ShiftFigures) -> Iterator[Fact]:
         f, p = s.now, s.now.profile
@@ -238,6 +237,8 @@ class _Writer:
         usual = p.get("usual_paco2")
         yield "Usual PaCO2", self._lines.pressure(usual if isinstance(usual, float) else None)
         yield "Home support", str(p.get("home_support") or formats.ABSENT)
+        if (at := quiet_since(s)) is not None:
+            yield "Record", f"nothing logged since {self._moment(at)}"
 
     def _mask_this_shift(self, s: ShiftFigures) -> str:
         text = formats.hours(s.hours_on_mask)

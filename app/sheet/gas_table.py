@@ -35,8 +35,9 @@ class GasRow:
 def gas_rows(s: ShiftFigures, lines: FigureLines) -> tuple[GasRow, ...]:
     """The gases of the shift, and the last one before it to compare with."""
     judged = judgements(s.now.responses)
-    rows = [_row(g, judged.get(g.at), lines, is_before=True) for g in (s.gas_before,) if g is not None]
-    return (*rows, *(_row(g, judged.get(g.at), lines) for g in s.gases))
+    bases = {r.baseline_at for r in s.now.responses}
+    found = [(g, True) for g in (s.gas_before,) if g is not None] + [(g, False) for g in s.gases]
+    return tuple(_row(g, judged.get(g.at), lines, is_before=b, is_base=g.at in bases) for g, b in found)
 
 
 def judgements(responses: tuple[ResponseFigure, ...]) -> dict[int, JudgedGas]:
@@ -49,7 +50,7 @@ def judgements(responses: tuple[ResponseFigure, ...]) -> dict[int, JudgedGas]:
     return found
 
 
-def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bool = False) -> GasRow:
+def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bool, is_base: bool) -> GasRow:
     unit = lines.reader.gas_unit
 
     def pressure(value: float | None) -> str:
@@ -67,7 +68,7 @@ def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bo
         _pressure_change(j.delta_paco2_mmHg if j else None, unit),
         pressure(g.pao2_mmHg), NO_VALUE if hco3 is None else formats.fixed(hco3, 1) + mark,
         pressure(g.pf_mmHg), NO_VALUE if g.fio2 is None else formats.fraction(g.fio2),
-        ", ".join([state or "not known", *marks]), _verdict(j), is_before,
+        ", ".join([state or "not known", *marks]), _verdict(j, is_base=is_base), is_before,
     )  # fmt: skip
 
 
@@ -79,9 +80,9 @@ def _pressure_change(value: float | None, unit: str) -> str:
     return "" if value is None else formats.gas_pressure(value, unit, sign=True).removesuffix(f" {unit}")
 
 
-def _verdict(j: JudgedGas | None) -> str:
+def _verdict(j: JudgedGas | None, *, is_base: bool) -> str:
     if j is None:
-        return "not used for a verdict"
+        return "baseline" if is_base else "not used for a verdict"
     timing = {"early": ", early", "late": ", late"}.get(j.timing, "")
     lost = ", gain lost" if j.since_start.gain_lost else ""
     return f"{j.verdict or 'not judged'}{lost} ({formats.minutes(j.minutes)}{timing})"

@@ -69,6 +69,8 @@ class WardPage:
     missing: tuple[str, ...]
     skin: str = ""
     """All checks of the skin that are due, in one line."""
+    quiet: str = ""
+    """That nothing was logged for any episode since a moment well before the shift's end; "" elsewhere."""
 
 
 @dataclass(frozen=True, slots=True)

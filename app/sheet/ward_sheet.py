@@ -66,12 +66,12 @@ class RowBlock:
     def _flag_width(self, press: Press, width: float) -> float:
         return (width - press.gap(12)) / 2
 
-    def _flag_height(self, press: Press, words: str, width: float, style: Style) -> float:
-        return press.height(words, style, width - press.gap(_TIER + 4)) + press.gap(1.6)
+    def _flag_height(self, press: Press, tier: str, words: str, style: Style, width: float) -> float:
+        return press.height(words, style, width - (press.gap(_TIER + 4) if tier else 0.0)) + press.gap(1.6)
 
     def _flags_height(self, press: Press, width: float) -> float:
         lines = self._flag_lines(press, width)
-        return sum(max(self._flag_height(press, w, width, s) for _, w, s in line) for line in lines)
+        return sum(max(self._flag_height(press, *flag, width) for flag in line) for line in lines)
 
     def height(self, press: Press, width: float) -> float:
         return (
@@ -103,7 +103,7 @@ class RowBlock:
             for n, (tier, words, style) in enumerate(line):
                 wide = half if len(line) == 2 else width
                 self._draw_flag(press, x + n * (half + press.gap(12)), y, wide, tier, words, style)
-            y += max(self._flag_height(press, w, width, s) for _, w, s in line)
+            y += max(self._flag_height(press, *flag, width) for flag in line)
         return y
 
     def _draw_flag(self, press: Press, x: float, y: float, width: float, tier: str, words: str, style: Style) -> None:
@@ -167,7 +167,7 @@ class DueList:
 def ward_blocks(page: WardPage) -> list[Block]:
     """The page's blocks from top to bottom, without signatures."""
     blocks: list[Block] = [SeeFirst(page.see_first)]
-    blocks.append(Heading("All episodes, in order of concern", f"{len(page.rows)} in this shift"))
+    blocks.append(Heading("All episodes, in order of concern", page.quiet or f"{len(page.rows)} in this shift"))
     blocks += [RowBlock(r) for r in page.rows] or [Text("No episode stood in this shift.")]
     blocks.append(Heading("Due in the next 4 h, and overdue", "gases first, the longest overdue on top"))
     if page.due:

@@ -134,11 +134,17 @@ def test_a_shift_that_ends_after_the_record_says_so_and_its_chart_ends_there(nig
     request = operations.HandoverRequest(end - 12 * HOUR, end)
     made = operations.prepare(night_store, "AB", demo.demo_now(), request).value
     found = sheet_content(made, Reader(demo.ZONE))
-    assert found.ward.shift.endswith("; nothing logged since 05:30")
+    assert found.ward.quiet == "nothing logged since 05:30"
+    assert "Nothing logged since 05:30" in handover_text(found)
     page = next(p for p in found.episodes if p.label == "Bed 4")
     shift = next(s for s in made.shift.episodes if s.now.label == "Bed 4")
     assert page.chart.end == shift.now.now.last_logged_at < end
-    assert "Nothing logged since 05:" in page.subtitle
+    assert dict(page.facts)["Record"].startswith("nothing logged since 05:")
+
+
+def test_a_shift_that_ends_now_needs_no_such_words(content: SheetContent) -> None:
+    assert content.ward.quiet == ""
+    assert "Record" not in dict(content.episodes[0].facts)
 
 
 def test_a_file_taken_in_late_is_not_counted_as_typed_late(tmp_path: Path) -> None:
