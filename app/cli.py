@@ -11,6 +11,7 @@ import sys
 from collections.abc import Callable, Sequence
 from importlib import import_module
 from pathlib import Path
+from typing import NoReturn
 
 from core.record.instant import Instant
 from core.record.message import RecordError
@@ -53,7 +54,7 @@ def _speak_utf8() -> None:
 def parser() -> argparse.ArgumentParser:
     """The grammar of the command line."""
     common = _common()
-    top = argparse.ArgumentParser(
+    top = _Parser(
         prog="luffmark", parents=[common], epilog=_CAUTION,
         description="Shift log, response figures, flags and handover for mask ventilation. Without a command the "
         "window opens.",
@@ -156,6 +157,7 @@ def _printing(command: Command) -> None:
     handover.add_argument("--from", dest="start", type=moment, metavar="T", help="the shift's start")
     handover.add_argument("--to", dest="end", type=moment, metavar="T", help="the shift's end")
     handover.add_argument("--out", type=Path, metavar="FILE", help=".pdf or .txt; left out: text on the screen")
+    handover.add_argument("--text", action="store_true", help="plain text, on the screen or into --out")
     handover.add_argument("--paper", choices=("A4", "Letter"), default="A4")
     handover.add_argument("--given-by", default="", metavar="NAME")
     handover.add_argument("--taken-by", default="", metavar="NAME")
@@ -222,12 +224,20 @@ def _keeping(command: Command) -> None:
     policy.add_argument("file", nargs="?", type=Path)
 
 
-def _common() -> argparse.ArgumentParser:
+class _Parser(argparse.ArgumentParser):
+    """Says what was wrong on one line: six lines of usage would push it out of sight."""
+
+    def error(self, message: str) -> NoReturn:
+        print(f"luffmark: {message} ({self.prog} --help tells more)", file=sys.stderr)
+        self.exit(WRONG_USAGE)
+
+
+def _common() -> _Parser:
     """What may stand before or after any command."""
-    common = argparse.ArgumentParser(add_help=False, argument_default=argparse.SUPPRESS)
+    common = _Parser(add_help=False, argument_default=argparse.SUPPRESS)
     group = common.add_argument_group("everywhere")
     group.add_argument("--store", type=Path, metavar="PATH", help="the store's file (default: your data folder)")
-    group.add_argument("--by", metavar="INITIALS", help="who does it (default: your login name)")
+    group.add_argument("--by", type=initials, metavar="INITIALS", help="who does it (default: your login name)")
     group.add_argument("--passphrase-fd", type=int, metavar="N", help="read the passphrase from this descriptor")
     group.add_argument("--pin-fd", type=int, metavar="N", help="read the PIN of --by from this descriptor")
     group.add_argument("--json", action="store_true", help="answer in JSON")
@@ -255,6 +265,17 @@ def moment(text: str) -> Instant:
         return parse(text)
     except RecordError as error:
         raise argparse.ArgumentTypeError(sentence(error.message)) from None
+
+
+def initials(text: str) -> str:
+    """Who does it: never nobody.
+
+    >>> initials(" AB ")
+    'AB'
+    """
+    if not text.strip():
+        raise argparse.ArgumentTypeError(f"'{text}' names nobody. Accepted: initials, e.g. AB")
+    return text.strip()
 
 
 def size(text: str) -> tuple[int, int]:

@@ -7,7 +7,7 @@ import getpass
 import json
 import os
 import sys
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -35,6 +35,8 @@ class Context:
     gas_unit: str
     zone: str
     pin_fd: int | None = None
+    by_is_login: bool = False
+    _wrote: list[bool] = field(default_factory=list)
 
     @classmethod
     def of(cls, args: argparse.Namespace) -> Context:
@@ -44,7 +46,7 @@ class Context:
             given or default_store(), given is not None, getattr(args, "by", None) or _login(),
             getattr(args, "passphrase_fd", None), getattr(args, "json", False),
             getattr(args, "gas_unit", None) or "mmHg", getattr(args, "zone", None) or "",
-            getattr(args, "pin_fd", None),
+            getattr(args, "pin_fd", None), not hasattr(args, "by"),
         )  # fmt: skip
 
     def now(self) -> Instant:
@@ -86,6 +88,8 @@ class Context:
         from app.words import sentence
         from storage.store import Store
 
+        if not read_only:
+            self._check_named()
         store = Store.open(self.store_path, passphrase=self.passphrase(), read_only=read_only)
         for notice in (*store.notices, *_policies_passed_over(store)):
             remark(sentence(notice, self.reader()))
@@ -95,7 +99,20 @@ class Context:
             except BaseException:
                 store.close()
                 raise
+        if not read_only:
+            self._wrote.append(True)
         return store
+
+    def _check_named(self) -> None:
+        """Nothing is written by nobody.
+
+        Raises:
+            RecordError: `people.nobody`.
+        """
+        from core.record.message import refuse
+
+        if not self.by:
+            raise refuse("people.nobody", accepted="--by INITIALS")
 
     def prove(self, store: Store) -> None:
         """Nobody acts as somebody else where people have PINs.
@@ -125,9 +142,11 @@ class Context:
 
         if self.store_path.exists():
             return self.open()
+        self._check_named()
         self.store_path.parent.mkdir(parents=True, exist_ok=True)
         store = Store.create(self.store_path, passphrase=self.passphrase(), now=self.now(), by=self.by,
                              imported=imported)  # fmt: skip
+        self._wrote.append(True)
         unprotected = "" if store.is_encrypted else ", not encrypted: who gets at the file can read it"
         remark(f"New store: {self.store_path}{unprotected}")
         if not imported:  # recording times of files stand only in a store that holds nothing yet
@@ -149,6 +168,9 @@ class Context:
             sys.stdout.write("\n")
         else:
             print(plain(text))
+        if self._wrote and self.by_is_login:
+            self._wrote.clear()
+            remark(f"Done as {self.by} (login name). --by INITIALS names another.")
 
 
 def _policies_passed_over(store: Store) -> tuple[Message, ...]:

@@ -6,14 +6,14 @@ import argparse
 import sys
 
 from app.commands.context import Context
-from app.formats import quantity, wall
+from app.formats import plain, quantity, wall
 from app.operations import entry as operations
 from app.operations import episode as episodes
 from app.operations import flag as flags
 from app.operations.outcome import Outcome
-from app.words import Reader
+from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
-from core.record.entries import Entry
+from core.record.entries import Action, Entry, NewEntry
 from core.record.episode import Episode
 from core.record.local_time import zoned_iso
 from core.record.message import refuse
@@ -35,13 +35,39 @@ def run(context: Context, args: argparse.Namespace) -> int:
         if args.entry is None:
             return _list(context, record, reader)
         entry_id = _whole_id(record, args.entry)
+        old = next(s.entry for s in record.standing if s.entry.id == entry_id)
+        asked = () if args.value is None else operations.correction_questions(old, args.value, args.unit)
+        if asked and not args.yes and args.reason.strip():
+            told = plain(" ".join(sentence(m, reader) for m in asked))
+            print(f"luffmark: not recorded. {told} Answer yes with --yes.", file=sys.stderr)
+            return 1
         outcome = _supersede(context, store, args, entry_id)
         touched = {args.episode, outcome.value.episode}
         flags.keep_transitions(store, context.by, context.now(), sorted(touched))
     made = outcome.value
-    context.answer(f"Done: {made.entries[0].action} of {CHANNELS[made.entries[0].channel].name} in {made.episode}.",
-                   {"episode": made.episode, "ids": list(made.ids), "head": outcome.head})  # fmt: skip
+    value = {"episode": made.episode, "ids": list(made.ids), "head": outcome.head, "old": _facts(old, reader),
+             "new": None if args.withdraw else _facts(made.entries[0], reader)}  # fmt: skip
+    context.answer(_done(old, made, reader), value)
     return 0
+
+
+def _done(old: Entry, made: operations.Recorded, reader: Reader) -> str:
+    """What stood and what stands now, each with its moment where that changed."""
+    new = made.entries[0]
+    name, was, then = CHANNELS[old.channel].name, _value(old, reader), wall(old.at, reader.zone)
+    if new.action is Action.WITHDRAW:
+        return f"Withdrawn in {old.episode}: {name} {was} of {then}."
+    if new.action is Action.MOVE:
+        return f"Moved from {old.episode} to {made.episode}: {name} {was} of {then}."
+    is_now, at = _value(new, reader), wall(new.at, reader.zone)
+    if new.at == old.at:
+        return f"Corrected in {made.episode}: {name} of {then}, {was} to {is_now}."
+    return f"Corrected in {made.episode}: {name} {was} of {then} to {is_now} of {at}."
+
+
+def _facts(e: NewEntry, reader: Reader) -> dict[str, object]:
+    return {"at": zoned_iso(e.at, reader.zone), "channel": e.channel, "unit": CHANNELS[e.channel].unit,
+            "value": e.number if e.words is None else e.words}  # fmt: skip
 
 
 def _supersede(
@@ -85,7 +111,7 @@ def _list(context: Context, record: Episode, reader: Reader) -> int:
     return 0
 
 
-def _value(e: Entry, reader: Reader) -> str:
+def _value(e: NewEntry, reader: Reader) -> str:
     if CHANNELS[e.channel].kind is Kind.INSTANT and e.number is not None:
         return wall(int(e.number), reader.zone)
     if e.number is None and e.words is None:

@@ -27,6 +27,9 @@ def run(context: Context, args: argparse.Namespace) -> int:
     if suffix not in ("", ".pdf", *_TEXT):
         print(f"luffmark: '{args.out}' must end in .pdf or .txt", file=sys.stderr)
         return 2
+    if args.text and (suffix == ".pdf" or args.close or args.blank):
+        print("luffmark: handover --text goes to the screen or into a .txt file", file=sys.stderr)
+        return 2
     if args.blank:
         return _blank(context, args.out, args.paper)
     if args.start is None or args.end is None:

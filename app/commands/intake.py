@@ -38,6 +38,9 @@ def run(context: Context, args: argparse.Namespace) -> int:
                 if context.json:
                     context.answer("", {"taken": taken, "refused": _refused_json(path, intake, reader)})
                 return 1
+            if not (intake.entries or intake.chunks or intake.repeated_in_store or intake.aside or intake.refusals):
+                print(f"luffmark: {path} has no rows under its header: nothing was taken.", file=sys.stderr)
+                return 1
             taken.append(_take(context, store, path, intake, reader, leave_out=may_leave_out))
         context.copy_policy(store)
     context.answer("\n".join(t.pop("text") for t in taken), {"taken": taken})

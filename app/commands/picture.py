@@ -8,16 +8,21 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from app.commands.context import Context
+from app.commands.context import Context, remark
+from app.formats import wall
+from app.operations import episode as episodes
 from app.operations import figures as operations
 from app.operations import panel as panels
 from app.operations import policy as policies
 from app.picture import SUFFIXES, Picture, write_picture
+from core.record.instant import HOUR, Instant
 
 if TYPE_CHECKING:
     from app.episode_shown import EpisodeOnScreen
     from app.theme import Theme
     from storage.store import Store
+
+RECENT = 24 * HOUR
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
@@ -30,17 +35,34 @@ def run(context: Context, args: argparse.Namespace) -> int:
         print(f"luffmark: picture --what {args.what} needs {wanted}", file=sys.stderr)
         return 2
     _check_writable(args.out)
-    as_of = context.now() if args.as_of is None else args.as_of
     from app.off_screen import gui_application
     from app.theme import THEMES
 
     with context.open(read_only=True) as store, gui_application():
+        as_of = _moment(context, store, args) if args.as_of is None else args.as_of
         requests = [operations.EpisodeRequest(key, as_of, args.as_known_at) for key in args.episode]
         theme = THEMES[args.theme]
         picture = _MADE[args.what](context, store, requests, theme)
         write_picture(picture if args.size is None else replace(picture, size=args.size), theme, args.out)
     context.answer(f"{args.out}", {"file": str(args.out), "what": args.what, "episodes": args.episode})
     return 0
+
+
+def _moment(context: Context, store: Store, args: argparse.Namespace) -> Instant:
+    """Now; of an episode in which nothing was logged for a day its newest logged moment, and that is said: panels end
+    at the moment asked for, and would be empty."""
+    now = context.now()
+    if args.what == "compare":
+        return now
+    record = episodes.load(store, args.episode[0], args.as_known_at).until(now)
+    moments = [int(s.t[-1]) for s in record.series.values() if len(s)]
+    moments += [int(w.t[-1]) for w in record.words.values() if len(w)]
+    newest = max(moments, default=now)
+    if newest >= now - RECENT:
+        return now
+    at = wall(newest, context.local_zone())
+    remark(f"Nothing was logged in the last 24 h: drawn as of {at}, the newest logged moment (--as-of: another).")
+    return newest
 
 
 def _panels(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:

@@ -11,6 +11,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "people.first_is_lead": "The first person of a store looks after the others. Accepted: {accepted}.",
     "people.last_lead": "{person} is the only ward lead. Accepted: {accepted}.",
     "people.lead_needed": "Only a ward lead may do that[[; {person} is none]]. Accepted: {accepted}.",
+    "people.nobody": "Nobody is named who does it. Accepted: {accepted}.",
     "people.pin_needed": "People of this store sign in with a PIN. Name who does it (--by) and give the PIN "
         "(--pin-fd N).",
     "people.unknown": "'{value}' is not one of the people of this store. Accepted: {accepted}.",

@@ -4,7 +4,7 @@ from typing import Final
 
 TEMPLATES: Final[dict[str, str]] = {
     "batch.empty": "There is nothing to record.",
-    "channel.unknown": "'{channel}' is no channel. Accepted, near it: {accepted}.",
+    "channel.unknown": "'{channel}' is no channel. Accepted: {accepted}.",
     "correction.many_entries": "{count} entries begin with '{entry}'. Accepted: {accepted}.",
     "correction.no_reason": "A correction needs its reason: {accepted}.",
     "correction.same_episode": "The entry is in {episode} already. Name {accepted}.",

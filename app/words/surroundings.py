@@ -41,7 +41,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "intake.withdrawn_already": "{path} was withdrawn already. Accepted: {accepted}.",
     "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}). "
         "Put the key file of a backup in its place.",
-    "key.envelope_missing": "The key file {path} that belongs beside the store is not there. "
+    "key.envelope_missing": "This file is no store, or an encrypted one whose key file {path} is not beside it. "
         "Put it back, or that of a backup.",
     "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
         "Update the program.",

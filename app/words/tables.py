@@ -41,7 +41,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "sheet.too_many_parts": "The spreadsheet has too many parts. Accepted: at most {accepted}.",
     "sheet.unknown": "There is no such sheet. Accepted: {accepted}.",
     "table.encoding_assumed": "The text is taken as {encoding}: check letters that are not plain.",
-    "table.no_rows": "The table has no rows. Accepted: {accepted}.",
+    "table.no_rows": "No row stands under the first line, which must be the header. Accepted: {accepted}.",
     "table.too_wide": "The table has too many columns. Accepted: at most {accepted}.",
     "time.unlike": "The time '{value}' is not written like the others. Accepted: {accepted}.",
     "value.formula": "{channel:name} '{value}' is a formula. Accepted: {accepted}.",

@@ -248,8 +248,8 @@ def channel(key: str) -> Channel:
     if found is None:
         from difflib import get_close_matches
 
-        near = ", ".join(get_close_matches(key, CHANNELS, 4, 0.5)) or "see the list of channels"
-        raise refuse("channel.unknown", channel=key, accepted=near)
+        near = ", ".join(get_close_matches(key.lower(), CHANNELS, 4, 0.7))
+        raise refuse("channel.unknown", channel=key, accepted=near or "a channel of the data dictionary")
     return found
 
 

@@ -69,6 +69,15 @@ def iso(at: Instant) -> str:
     return to_datetime(at).isoformat()
 
 
+def iso_second(at: Instant) -> str:
+    """As `iso`, to the whole second: for sentences, where a clock's fraction is only noise.
+
+    >>> iso_second(parse("2026-03-28T01:10:00.123456+00:00"))
+    '2026-03-28T01:10:00+00:00'
+    """
+    return iso(at - at % SECOND)
+
+
 def minutes_between(earlier: Instant, later: Instant) -> float:
     """Elapsed minutes, negative when `later` comes first."""
     return (later - earlier) / MINUTE

@@ -117,7 +117,7 @@ def check_hard(channel: Channel, number: float, shown: str) -> None:
     if not low - slack <= number <= high + slack:
         raise refuse(
             "value.past_hard_limit",
-            channel=channel.key, value=shown, low=low, high=high, unit=channel.unit,
+            channel=channel.key, value=shown.removesuffix(" pH"), low=low, high=high, unit=channel.unit,
             accepted=_accepted(channel),
         )  # fmt: skip
 

@@ -55,6 +55,6 @@ def moment(shown: str, now: Instant) -> Instant:
         raise refuse("time.date_only", value=shown[:80], accepted="date and time to the minute")
     at = instant.parse(shown)
     if at > now + CLOCK_LEAD:
-        raise refuse("instant.in_future", value=shown[:80], now=instant.iso(now),
+        raise refuse("instant.in_future", value=shown[:80], now=instant.iso_second(now),
                      accepted="at most 5 min ahead of the clock")  # fmt: skip
     return at

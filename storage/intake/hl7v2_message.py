@@ -151,7 +151,7 @@ class MessageRows:
             raise refuse("time.none", accepted="OBX-14 or OBR-7")
         at = parse_dtm(text, self._zone)
         if at > self._now + CLOCK_LEAD:
-            raise refuse("instant.in_future", value=text, now=instant.iso(self._now),
+            raise refuse("instant.in_future", value=text, now=instant.iso_second(self._now),
                          accepted="at most 5 min ahead of the clock")  # fmt: skip
         return at
 

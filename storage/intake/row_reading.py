@@ -93,7 +93,7 @@ class RowReader:
     def _instant(self, text: str) -> Instant:
         at = instant.parse(text)
         if at > self._now + CLOCK_LEAD:
-            raise refuse("instant.in_future", value=text, now=instant.iso(self._now),
+            raise refuse("instant.in_future", value=text, now=instant.iso_second(self._now),
                          accepted="at most 5 min ahead of the clock")  # fmt: skip
         return at
 

@@ -115,7 +115,8 @@ def _begun(
     file: Path, dialect: Dialect, rows: list[list[str]], lines: list[int], book: Workbook | None = None
 ) -> Table:
     if len(rows) < 2:
-        raise unreadable(dialect.header_line, file.name, "table.no_rows", accepted="a header and at least one row")
+        accepted = "a header and rows; of a log: episode,at,channel,value,unit,by,note"
+        raise unreadable(dialect.header_line, file.name, "table.no_rows", accepted=accepted)
     header = column_names(_without_tail(rows[0]))
     if len(header) > MOST_COLUMNS:
         raise unreadable(dialect.header_line, str(len(header)), "table.too_wide", accepted=MOST_COLUMNS)

@@ -121,7 +121,7 @@ class TableRows:
         t += self._shift
         latest = self._now + CLOCK_LEAD
         for i in np.flatnonzero(good & (t > latest)).tolist():
-            values: dict[str, Value] = {"value": texts[i][:80], "now": instant.iso(self._now),
+            values: dict[str, Value] = {"value": texts[i][:80], "now": instant.iso_second(self._now),
                                         "accepted": "at most 5 min ahead of the clock"}  # fmt: skip
             message = Message("instant.in_future", values)
             self._findings.refuse(lines[i], use.date, texts[i], message)

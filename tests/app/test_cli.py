@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import os
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -201,8 +202,11 @@ def test_correct_lists_and_supersedes(filled: Any) -> None:
     entry = next(e for e in json.loads(out)["entries"] if e["channel"] == "ph" and e["value"] == 7.33)
     assert filled("correct", "N4", entry["id"][:8], "--value", "7.13")[0] == REFUSED, "it needs a reason"
     assert filled("correct", "N4", entry["id"][:8], "--reason", "x")[0] == WRONG_USAGE
-    code, _, err = filled("correct", "N4", entry["id"][:8], "--value", "7.13", "--reason", "misread")
+    code, _, err = filled("correct", "N4", entry["id"][:8], "--value", "7.91", "--reason", "misread")
+    assert (code, "pH 7.91 is outside the usual 7.00 to 7.60" in err, "--yes" in err) == (REFUSED, True, True)
+    code, said, err = filled("correct", "N4", entry["id"][:8], "--value", "7.13", "--reason", "misread")
     assert code == DONE, err
+    assert said == "Corrected in N4: pH of 27-Mar-2026 21:25, 7.33 to 7.13.\n"
     _, out, _ = filled("figures", "N4", "--as-of", "2026-03-27T22:00Z", "--json")
     gas = json.loads(out)["episodes"][0]["gases"][1]
     assert (gas["ph"], gas["corrected"]) == (7.13, True)
@@ -287,6 +291,59 @@ def test_policy_is_shown_checked_and_put_in_force(filled: Any, tmp_path: Path) -
 )  # fmt: skip
 def test_wrong_usage_ends_with_2(run: Any, arguments: tuple[str, ...]) -> None:
     assert run(*arguments)[0] == WRONG_USAGE
+
+
+@pytest.mark.parametrize("arguments", [("figures", "--as-of", "noon"), ("log", "N4", "rr 20", "--by", "")])
+def test_wrong_usage_is_told_on_one_line(run: Any, arguments: tuple[str, ...]) -> None:
+    code, _, err = run(*arguments)
+    assert (code, len(err.splitlines())) == (WRONG_USAGE, 1), err
+    assert "Accepted" in err
+
+
+def test_the_login_name_is_said_once_where_nobody_is_named(filled: Any) -> None:
+    _, _, err = filled("log", "N4", "rr 20")
+    assert err.count("(login name)") == 1
+    assert "login name" not in filled("log", "N4", "rr 21", "--by", "AB", "--yes")[2]
+    assert "login name" not in filled("figures", "N4")[2]
+
+
+def test_files_without_header_or_rows_say_so(filled: Any, tmp_path: Path) -> None:
+    bare, only = tmp_path / "bare.csv", tmp_path / "only.csv"
+    bare.write_text(ROWS.splitlines()[0] + "\n", "utf-8")
+    only.write_text(HEADER, "utf-8")
+    code, _, err = filled("intake", bare)
+    assert (code, "episode,at,channel,value" in err) == (REFUSED, True)
+    code, out, err = filled("intake", only)
+    assert (code, out, "has no rows" in err) == (REFUSED, "", True)
+
+
+def test_words_are_offered_only_where_they_are_near(filled: Any, tmp_path: Path) -> None:
+    bad = tmp_path / "bad.csv"
+    bad.write_text(HEADER + "N4,2026-03-27T22:00:00+00:00,banana,1,,AB,\nN4,2026-03-27T22:00:00+00:00,ipapp,1,,AB,\n",
+                   "utf-8")  # fmt: skip
+    err = filled("intake", bad)[2]
+    assert "apnoea" not in err
+    assert "'ipapp' is no channel. Accepted: ipap" in err
+
+
+def test_a_unit_stands_once_and_times_to_the_second(filled: Any, tmp_path: Path) -> None:
+    assert "pH 9.9 is not possible" in filled("log", "N4", "ph 9.9")[2]
+    bad = tmp_path / "bad.csv"
+    bad.write_text(HEADER + "N4,2098-03-27T22:00:00+00:00,rr,20,,AB,\n", "utf-8")
+    assert not re.search(r":\d\d\.\d", filled("intake", bad)[2])
+
+
+def test_a_picture_of_an_old_episode_ends_at_its_newest_moment_and_says_so(filled: Any, tmp_path: Path) -> None:
+    code, _, err = filled("picture", "N4", "--out", tmp_path / "p.png")
+    assert (code, "drawn as of 27-Mar-2026 21:25" in err) == (DONE, True), err
+    _, _, err = filled("picture", "N4", "--out", tmp_path / "q.png", "--as-of", "2026-03-27T22:00Z")
+    assert "drawn as of" not in err
+
+
+def test_handover_as_text(filled: Any, tmp_path: Path) -> None:
+    code, out, _ = filled("handover", *SHIFT, "--text")
+    assert (code, "Bed 4" in out) == (DONE, True)
+    assert filled("handover", *SHIFT, "--text", "--out", tmp_path / "h.pdf")[0] == WRONG_USAGE
 
 
 def test_a_store_that_is_not_there_is_told_in_one_line(run: Any) -> None:
