@@ -56,6 +56,17 @@ def headline(f: EpisodeFigures) -> Headline | None:
     return Headline(verdict_of(told.headline), lost, verdict_of(against) if against is not None else None)
 
 
+def verdict_sentences(f: EpisodeFigures) -> tuple[str, ...]:
+    """The verdict and that since the start, in words; nothing before any change."""
+    told = headline(f)
+    if told is None:
+        return ()
+    if told.since_start is None:
+        return (told.word,)
+    against = translate("headline", "since the start: {verdict}").format(verdict=verdict_word(told.since_start))
+    return told.word, against
+
+
 def judged_by(response: ResponseFigure) -> JudgedGas | None:
     """The gas that a headline rests on."""
     return next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)

@@ -20,7 +20,7 @@ from app.figure_rows import RowMaker
 from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, hours, minutes, since, trimmed
-from app.headline import Headline, ever_acidotic, gas_state_word, headline, off_mask_word, pf_word
+from app.headline import Headline, ever_acidotic, gas_state_word, headline, off_mask_word, pf_word, sign_of
 from app.phrases import gas_words, state_of, support_now, translate
 from app.signs import Sign
 from app.theme import Theme, Tier, Verdict, tier_word, verdict_word
@@ -209,7 +209,7 @@ class _Facts:
             self.theme,
             told.word,
             lines,
-            sign=Sign(self.theme, told.sign),
+            sign=Sign(self.theme, sign_of(told.verdict, lost=told.gain_lost)),
             explanation=self.explainer.response(response),
         )
 

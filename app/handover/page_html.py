@@ -7,7 +7,7 @@ from html import escape
 
 from app.phrases import translate
 from app.sheet.shapes import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
-from app.theme import Theme, Tier, tier_word
+from app.theme import Theme, Tier, Verdict, tier_word
 
 
 def page_html(content: SheetContent, theme: Theme) -> str:
@@ -69,8 +69,15 @@ class _Writer:
         told = [escape(f) for f in r.flags] + ([f"{quiet}{escape(r.remarks)}</span>"] if r.remarks else [])
         told += [f"<b>{escape(r.action)}</b>"] if r.action else []
         flags = "<br>".join(told) or f"{quiet}{escape(translate('handover', 'none'))}</span>"
-        support = f"{escape(r.support)}<br>{escape(r.response)}"
+        support = f"{escape(r.support)}<br>{self.response(r)}"
         return who, escape(r.state) + change, support, flags
+
+    def response(self, r: WardRow) -> str:
+        """The response; what got worse or lost its gain in the colour of its sign, and strong."""
+        if not r.is_grave:
+            return escape(r.response)
+        colour = self.c.verdicts[Verdict(r.sign)]
+        return f'<span style="color:{colour}; font-weight:600">{escape(r.response)}</span>'
 
     def table(self, heads: Iterable[str], rows: Iterable[Iterable[str]], widths: Iterable[int]) -> str:
         """Cells are rich text already; widths in per cent."""

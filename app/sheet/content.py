@@ -11,12 +11,13 @@ from dataclasses import replace
 
 from app import formats
 from app.finding_names import marker_name
-from app.headline import ever_acidotic
+from app.headline import ever_acidotic, headline
 from app.operations.handover import Handover
 from app.sheet.chart_data import shift_chart
-from app.sheet.due_lines import GAS, due_short, skin_line, ward_due
+from app.sheet.due_lines import due_short, skin_line, ward_due
 from app.sheet.gas_table import gas_rows
 from app.sheet.shapes import ChangeLine, EpisodePage, Fact, FlagLine, SheetContent, WardPage, WardRow
+from app.ward.ordering import GAS
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from core.figures.shift import ShiftFigures
@@ -93,7 +94,7 @@ class _Writer:
             "; ".join(due_short(d, self._reader) for d in s.due),
             f"Ceiling: {p.get('ceiling_of_care') or formats.ABSENT}. "
             f"Resuscitation: {p.get('resuscitation') or formats.ABSENT}.",
-            f.support.ended_at is not None, self._action(s),
+            f.support.ended_at is not None, self._action(s), _sign(f),
         )  # fmt: skip
 
     def _action(self, s: ShiftFigures) -> str:
@@ -329,6 +330,11 @@ def quiet_since(s: ShiftFigures) -> int | None:
     if at is None or s.now.support.ended_at is not None or s.end - at <= QUIET:
         return None
     return at
+
+
+def _sign(f: EpisodeFigures) -> str:
+    told = headline(f)
+    return told.sign.value if told is not None else ""
 
 
 def _strength(f: FlagFigure) -> tuple[int, int]:

@@ -7,12 +7,12 @@ from typing import Final
 
 from app import formats
 from app.finding_names import due_name
+from app.ward.ordering import GAS
 from app.words import Reader
 from core.figures.shift import ShiftFigures
 from core.judgement.shapes import DueFigure
 from core.record.instant import MINUTE
 
-GAS: Final = frozenset({"gas", "repeat_gas"})
 SKIN: Final = "skin_check"
 
 

@@ -55,6 +55,13 @@ class WardRow:
     ended: bool = False
     action: str = ""
     """What is planned and who was told, where something is to be done; "" elsewhere."""
+    sign: str = ""
+    """The verdict that its sign shows: never a better that hides a relapse."""
+
+    @property
+    def is_grave(self) -> bool:
+        """Whether the response is to be read as strongly as the state."""
+        return self.sign in ("worse", "mixed")
 
 
 @dataclass(frozen=True, slots=True)

@@ -27,6 +27,9 @@ class RowBlock:
         change = f"{r.change_of_state[0].upper()}{r.change_of_state[1:]}. " if r.change_of_state else ""
         return f"{r.who}. {change}{r.limits}"
 
+    def _response_style(self) -> Style:
+        return STRONG if self.row.is_grave else BODY
+
     def _title(self) -> str:
         return f"{self.row.number}  {self.row.label}"
 
@@ -76,7 +79,8 @@ class RowBlock:
     def height(self, press: Press, width: float) -> float:
         return (
             self._title_height(press, width) + self._gas_height(press, width)
-            + press.height(self.row.response, BODY, width) + self._flags_height(press, width) + press.gap(6)
+            + press.height(self.row.response, self._response_style(), width)
+            + self._flags_height(press, width) + press.gap(6)
         )  # fmt: skip
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
@@ -93,7 +97,7 @@ class RowBlock:
         else:
             press.text(x, y + press.height(r.state, STRONG, width), width, r.support, BODY)
         y += self._gas_height(press, width)
-        y += press.text(x, y, width, r.response, BODY)
+        y += press.text(x, y, width, r.response, self._response_style())
         y = self._draw_flags(press, x, y + press.gap(1), width)
         press.line(x, y + press.gap(2), x + width, y + press.gap(2), 0.3, LINE)
 

@@ -11,7 +11,15 @@ from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
 from app.course import Course
 from app.finding_names import due_name, marker_name
 from app.formats import clock, minutes, quantity
-from app.headline import gas_state_word, headline, off_mask_word, sign_of, state_now, verdict_with_loss
+from app.headline import (
+    gas_state_word,
+    headline,
+    off_mask_word,
+    sign_of,
+    state_now,
+    verdict_sentences,
+    verdict_with_loss,
+)
 from app.phrases import (
     change_sentence,
     change_word,
@@ -112,14 +120,16 @@ class LaneWords:
 
     def _state_word(self, f: EpisodeFigures, gas: GasFigure | None) -> str:
         """The state; a mask that is off comes first, since no setting acts then."""
-        state = state_now(f, gas, self.gas_unit) if gas is not None else translate("ward", "no gas yet")
-        return "; ".join(x for x in (off_mask_word(f, self.zone), state) if x)
+        off = off_mask_word(f, self.zone)
+        if gas is None:
+            state = translate("ward", "no gas yet")
+        else:  # the P/F was that on support
+            state = gas_state_word(f, gas) if off else state_now(f, gas, self.gas_unit)
+        return f"{off}; {state}" if off else state
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
-        return (
-            indication_word(str(indication)) if indication else translate("ward", "indication not recorded")
-        )
+        return indication_word(str(indication)) if indication else translate("ward", "indication not recorded")
 
     def _due_word(self, due: DueFigure | None) -> str:
         if due is None:
@@ -154,18 +164,10 @@ class LaneWords:
             parts.append(
                 f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_now(f, gas, self.gas_unit)})"
             )
-        parts += self._verdict_sentences(f)
+        parts += verdict_sentences(f)
         parts += flag_words(f)
         parts.append(self._end_word(f) if is_ended(f) else self._due_word(next_due(f)))
         return ". ".join(p for p in parts if p)
-
-    def _verdict_sentences(self, f: EpisodeFigures) -> Iterator[str]:
-        told = headline(f)
-        if told is not None:
-            yield told.word
-            if told.since_start is not None:
-                word = verdict_word(told.since_start)
-                yield translate("ward", "since the start: {verdict}").format(verdict=word)
 
     # along the clock
 
@@ -277,9 +279,7 @@ class LaneWords:
     def _window_items(self, f: EpisodeFigures) -> Iterator[LaneItem]:
         for r in f.responses:
             if r.headline == "not yet known" and r.superseded_at is None and r.window_to > self.as_of:
-                text = translate(
-                    "ward", "Response window {start} to {end} after {anchor}: no gas yet"
-                ).format(
+                text = translate("ward", "Response window {start} to {end} after {anchor}: no gas yet").format(
                     start=clock(r.window_from, self.zone),
                     end=clock(r.window_to, self.zone),
                     anchor=anchor_name(r),

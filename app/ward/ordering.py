@@ -11,6 +11,7 @@ from core.record.instant import Instant
 
 OPEN_DUE = ("overdue", "soon", "open", "awaiting result")
 _URGENT = ("overdue", "soon")
+GAS = ("gas", "repeat_gas")
 CARE = ("skin_check", "mask_check", "complete_score", "ceiling")
 _OPEN_FLAG = ("raised", "seen")
 
@@ -37,12 +38,16 @@ def is_ended(figures: EpisodeFigures) -> bool:
 
 
 def next_due(figures: EpisodeFigures) -> DueFigure | None:
-    """The open due item to be told first: a gas or a look before care, what is urgent, what ends first.
+    """The open due item to be told first: a gas or a look before care, what is urgent, a gas, what ends first.
 
     A check of the skin that is overdue must not stand before a gas: its flag says it anyway.
     """
     items = [d for d in figures.due if d.state in OPEN_DUE]
-    return min(items, key=lambda d: (d.what in CARE, d.state not in _URGENT, d.due_until), default=None)
+    return min(items, key=_due_order, default=None)
+
+
+def _due_order(d: DueFigure) -> tuple[bool, bool, bool, Instant]:
+    return d.what in CARE, d.state not in _URGENT, d.what not in GAS, d.due_until
 
 
 def natural(text: str) -> tuple[tuple[int, int | str], ...]:

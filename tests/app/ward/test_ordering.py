@@ -54,6 +54,8 @@ def test_a_gas_due_is_told_before_care_that_is_later_overdue():
              DueFigure("gas", because, at("04:00"), at("05:00"), "overdue"),
              DueFigure("reassessment", because, at("06:00"), at("07:00"), "open"))  # fmt: skip
     assert next_due(EpisodeFigures("E", at("05:30"), due=items)).what == "gas"
+    review = DueFigure("oxygen_review", because, at("01:00"), at("02:00"), "overdue")
+    assert next_due(EpisodeFigures("E", at("05:30"), due=(review, *items))).what == "gas"
     assert next_due(EpisodeFigures("E", at("05:30"), due=(items[0], items[2]))).what == "reassessment"
     assert next_due(EpisodeFigures("E", at("05:30"), due=items[2:])).what == "reassessment"
     assert next_due(EpisodeFigures("E", at("05:30"), due=(replace(items[0], state="done"),))) is None
