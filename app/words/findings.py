@@ -158,7 +158,8 @@ SCORES: Final[dict[str, str]] = {
     "news2.low_medium": "{lowest:0} points with one parameter at 3: urgent ward review ({sure})",
     "news2.medium": "{at_least:pick yes=at least ;no=}{lowest:0} points: medium (urgent review, {sure})",
     "news2.none": "{lowest:0} points ({sure})",
-    "news2.scale": "SpO2 scale {scale}",
+    "news2.scale":
+        "SpO2 scale {scale}[[ (the target is {low:0}-{high:0} %: scale 2 needs a clinician's record)]]",
     "population.acute_hypercapnia":
         "in acute hypercapnia (pH {ph:2}, PaCO2 {paco2:gas}), outside its population",
     "population.below_16": "age {age:0} is below 16, outside its population",

@@ -7,7 +7,7 @@ taken as normal: it stays missing, and the score is bounded.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import isnan
 
 import numpy as np
@@ -20,7 +20,7 @@ from core.judgement.shapes import GasFigure, ScoreFigure, ScoreInput
 from core.record.channels import CHANNELS
 from core.record.episode import Episode, Series
 from core.record.instant import MINUTE, Instant
-from core.record.message import Message
+from core.record.message import Message, Value
 from core.record.support import SupportTime
 
 DEVICE_MEDIAN = 15 * MINUTE
@@ -188,13 +188,24 @@ def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
         None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow
     )
     found["on_oxygen"] = Found("yes" if oxygen else "no", at) if oxygen is not None else NOTHING
+    scale = 2 if ctx.episode.latest_text("spo2_scale") == "2" else 1
     score = news2(
         rr=found["rr"].number, spo2=found["spo2"].number, on_oxygen=oxygen, sbp=found["sbp"].number,
         hr=found["hr"].number, acvpu=found["acvpu"].word, temp=found["temp"].number,
-        scale=2 if ctx.episode.latest_text("spo2_scale") == "2" else 1,
+        scale=scale,
         texts=texts_of(found), age=ctx.episode.latest("age"),
     )  # fmt: skip
-    return score_figure(score, at, found, {})
+    figure = score_figure(score, at, found, {})
+    return figure if score.population_reason is not None else replace(figure, caveat=_scale_caveat(ctx, scale))
+
+
+def _scale_caveat(ctx: Context, scale: int) -> Message:
+    """The scale used. Under a range for hypercapnic risk, scale 1 scores the SpO2 that is wanted as bad: it is said,
+    and the scale stays a clinician's word."""
+    values: dict[str, Value] = {"scale": scale}
+    if scale == 1 and ctx.target.high <= ctx.policy.oxygen.risk_target_high.value:
+        values |= {"low": ctx.target.low, "high": ctx.target.high}
+    return Message("news2.scale", values)
 
 
 def _latest_vitals(episode: Episode) -> Instant | None:

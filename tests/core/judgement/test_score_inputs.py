@@ -83,6 +83,25 @@ def test_news2_uses_scale_two_only_where_a_clinician_recorded_it(scale, points):
     assert news2_latest(ctx, NO_WALLS).points == points
 
 
+@pytest.mark.parametrize(
+    ("target", "scale", "said"),
+    [
+        ("target_spo2_low 88 target_spo2_high 92", "", {"scale": 1, "low": 88.0, "high": 92.0}),
+        ("target_spo2_low 88 target_spo2_high 92", "spo2_scale 2", {"scale": 2}),
+        ("target_spo2_low 94 target_spo2_high 98", "", {"scale": 1}),
+    ],
+)
+def test_news2_on_scale_one_says_a_target_that_calls_for_scale_two(target, scale, said):
+    ctx = context(f"01:00 {target} {scale}\n05:00 rr 20 spo2 90 hr 90 sbp 120 temp 37 acvpu alert")
+    caveat = news2_latest(ctx, NO_WALLS).caveat
+    assert (caveat.key, dict(caveat.values)) == ("news2.scale", said)
+
+
+def test_news2_of_a_child_says_so_first():
+    ctx = context("01:00 age 12 target_spo2_low 88 target_spo2_high 92\n05:00 rr 20 spo2 90 hr 90")
+    assert news2_latest(ctx, NO_WALLS).caveat.key == "population.below_16"
+
+
 def test_news2_counts_an_oxygen_flow_as_oxygen():
     ctx = context(
         "01:00 mode bpap-st ipap 14 epap 5 o2 flow 3\n02:00 rr 18 spo2 97 bp 130/80 hr 80 acvpu alert temp 37"
