@@ -67,6 +67,14 @@ def verdict_sentences(f: EpisodeFigures) -> tuple[str, ...]:
     return told.word, against
 
 
+def since_start_words(judged: JudgedGas) -> str:
+    """What a gas says against the start, to stand behind its verdict; "" where it cannot be compared."""
+    if judged.since_start.verdict is None:
+        return ""
+    word = verdict_word(verdict_of(judged.since_start.verdict))
+    return translate("headline", "; since the start: {verdict}").format(verdict=word)
+
+
 def judged_by(response: ResponseFigure) -> JudgedGas | None:
     """The gas that a headline rests on."""
     return next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)

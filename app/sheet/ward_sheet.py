@@ -171,7 +171,9 @@ class DueList:
 def ward_blocks(page: WardPage) -> list[Block]:
     """The page's blocks from top to bottom, without signatures."""
     blocks: list[Block] = [SeeFirst(page.see_first)]
-    blocks.append(Heading("All episodes, in order of concern", page.quiet or f"{len(page.rows)} in this shift"))
+    if page.quiet:
+        blocks.append(Text(f"{page.quiet[:1].upper()}{page.quiet[1:]}.", STRONG))
+    blocks.append(Heading("All episodes, in order of concern", f"{len(page.rows)} in this shift"))
     blocks += [RowBlock(r) for r in page.rows] or [Text("No episode stood in this shift.")]
     blocks.append(Heading("Due in the next 4 h, and overdue", "gases first, the longest overdue on top"))
     if page.due:

@@ -16,6 +16,7 @@ from app.headline import (
     headline,
     off_mask_word,
     sign_of,
+    since_start_words,
     state_now,
     verdict_sentences,
     verdict_with_loss,
@@ -32,7 +33,7 @@ from app.phrases import (
     support_now,
     verdict_or_none,
 )
-from app.theme import Tier, Verdict, tier_word, verdict_word
+from app.theme import Tier, Verdict, tier_word
 from app.ward.moves import Move, move_sentence
 from app.ward.ordering import is_ended, next_due
 from app.words import Reader, sentence
@@ -251,13 +252,7 @@ class LaneWords:
             minutes=minutes(judged.minutes),
             anchor=anchor_name(response),
             time=clock(response.anchor_at, self.zone),
-        ) + self._since_start(judged)
-
-    def _since_start(self, judged: JudgedGas) -> str:
-        against = verdict_or_none(judged.since_start.verdict)
-        if against is None:
-            return ""
-        return translate("ward", "; since the start: {verdict}").format(verdict=verdict_word(against))
+        ) + since_start_words(judged)
 
     def _change_sentence(self, n: int, course: Course) -> str:
         s = course.stretches[n]
