@@ -101,6 +101,15 @@ def sign_of(verdict: Verdict, *, lost: bool, since_start: Verdict | None = None)
     return verdict
 
 
+def judged_sign(judged: JudgedGas | None) -> Verdict | None:
+    """The sign to draw at a gas; None where it judges nothing."""
+    if judged is None or judged.verdict is None:
+        return None
+    since = judged.since_start
+    against = verdict_of(since.verdict) if since.verdict is not None else None
+    return sign_of(verdict_of(judged.verdict), lost=since.gain_lost, since_start=against)
+
+
 def ever_acidotic(f: EpisodeFigures) -> bool:
     """Whether there was an acidosis that could have resolved."""
     return f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)

@@ -8,9 +8,9 @@ from math import ceil, floor
 
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
 from app.formats import fixed, gas_pressure, signed, trimmed, wall
+from app.headline import gas_state_word, judged_sign, verdict_with_loss
 from app.phrases import gas_name, gas_words, ph_word, state_of, translate, verdict_or_none
 from app.tables import Table
-from app.theme import state_word, verdict_word
 from app.ward.lane_words import anchor_name
 from app.words import Reader, sentence
 from core.figures.gas_path import PathGas, gas_path
@@ -70,7 +70,7 @@ def _map_gas(p: PathGas, reader: Reader, factor: float) -> MapGas:
     marks = {"venous": translate("map", "venous"), "capillary": translate("map", "capillary")}
     return MapGas(
         p.number, gas.at, gas.ph, gas.paco2_mmHg * factor, state_of(gas.state if p.on_path else None),
-        verdict_or_none(p.judged.verdict if p.judged is not None else None), gas_sentence(p, reader),
+        judged_sign(p.judged), gas_sentence(p, reader),
         gas.doubt or gas.disputed, p, marks.get(gas.site, ""), p.on_path,
     )  # fmt: skip
 
@@ -98,7 +98,8 @@ def response_words(p: PathGas, reader: Reader) -> str:
     if p.judged is None or p.response is None:
         return ""
     verdict = verdict_or_none(p.judged.verdict)
-    word = verdict_word(verdict) if verdict is not None else translate("map", "not judged")
+    lost = p.judged.since_start.gain_lost
+    word = verdict_with_loss(verdict, lost=lost) if verdict is not None else translate("map", "not judged")
     deltas = []
     if p.judged.delta_ph is not None:
         deltas.append(f"pH {signed(p.judged.delta_ph, 2)}")
@@ -133,14 +134,14 @@ def map_table(figures: EpisodeFigures, reader: Reader) -> Table:
     path = gas_path(figures)
     found = sorted((*path.gases, *path.not_placed), key=lambda p: p.number)
     title = translate("map", "Acid-base map of {label}").format(label=figures.label)
-    return Table(title, heads, tuple(_row(p, reader) for p in found), summary(figures, reader))
+    return Table(title, heads, tuple(_row(p, figures, reader) for p in found), summary(figures, reader))
 
 
-def _row(p: PathGas, reader: Reader) -> tuple[str, ...]:
+def _row(p: PathGas, figures: EpisodeFigures, reader: Reader) -> tuple[str, ...]:
     g = p.gas
     return (
         str(p.number), wall(g.at, reader.zone), gas_name(g), ph_word(g) or "-",
         "-" if g.paco2_mmHg is None else gas_pressure(g.paco2_mmHg, reader.gas_unit),
         "-" if g.hco3_calculated_mmol_L is None else f"{fixed(g.hco3_calculated_mmol_L, 1)} mmol/L",
-        state_word(state_of(g.state)), class_words(p, reader), response_words(p, reader),
+        gas_state_word(figures, g), class_words(p, reader), response_words(p, reader),
     )  # fmt: skip

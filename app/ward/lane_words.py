@@ -14,8 +14,8 @@ from app.formats import clock, minutes, quantity
 from app.headline import (
     gas_state_word,
     headline,
+    judged_sign,
     off_mask_word,
-    sign_of,
     since_start_words,
     state_now,
     verdict_sentences,
@@ -228,8 +228,6 @@ class LaneWords:
         ]
         if found is not None and verdict is not None:
             parts.append(self._verdict_sentence(verdict, found[0], found[1]))
-            since = found[1].since_start
-            verdict = sign_of(verdict, lost=since.gain_lost, since_start=verdict_or_none(since.verdict))
         if gas.doubt:
             parts.append(translate("ward", "doubtful: outside usual limits and not confirmed"))
         if gas.corrected:
@@ -239,7 +237,7 @@ class LaneWords:
             gas.at,
             ". ".join(parts),
             word=f"pH {gas.ph_text or gas.ph or ''}",
-            verdict=verdict,
+            verdict=judged_sign(found[1]) if found is not None else None,
             state=state_of(gas.state),
             doubtful=gas.doubt or gas.disputed,
             payload=gas,

@@ -6,6 +6,9 @@ import re
 from collections.abc import Sequence
 from enum import StrEnum
 
+from app.headline import ever_acidotic, headline
+from app.theme import Verdict
+from core.judgement.now import headline_response
 from core.judgement.shapes import DueFigure, EpisodeFigures
 from core.record.instant import Instant
 
@@ -88,16 +91,21 @@ def shown(ward: Sequence[EpisodeFigures], which: Shown, text: str = "") -> tuple
 def _passes(f: EpisodeFigures, which: Shown) -> bool:
     if which is Shown.NOT_RESPONDING:
         strong = any(g.state in _OPEN_FLAG and g.tier in ("escalate", "concern") for g in f.flags)
-        latest = next((r for r in reversed(f.responses) if r.headline_gas_at is not None), None)
-        poor = (
-            latest is not None
-            and latest.headline in ("worse", "mixed", "no clear change")
-            and latest.state != "resolved"
-        )
-        return not is_ended(f) and (strong or poor)
+        return not is_ended(f) and (strong or _responds_poorly(f))
     if which is Shown.DUE:
         return any(d.state in _URGENT for d in f.due)
     return True
+
+
+def _responds_poorly(f: EpisodeFigures) -> bool:
+    """Worse, or a gain lost; or no clear change where no acidosis resolved."""
+    told, latest = headline(f), headline_response(f.responses)
+    if told is None or latest is None or latest.headline_gas_at is None:
+        return False
+    if told.sign in (Verdict.WORSE, Verdict.MIXED):
+        return True
+    settled = latest.state == "resolved" and ever_acidotic(f)
+    return told.verdict is Verdict.NO_CLEAR_CHANGE and not settled
 
 
 def _searched(f: EpisodeFigures) -> str:

@@ -6,6 +6,7 @@ from app.ward.ordering import Order, Shown, first_to_see, natural, next_due, ord
 from core.judgement.shapes import Concern, DueFigure, EpisodeFigures, SupportFigure
 from core.record.message import Message
 from tests.support.invented_ward import at, ward
+from tests.support.sample_ward import sample_ward
 
 FIGURES = [b.figures for b in ward()]
 
@@ -46,6 +47,13 @@ def test_filters():
     assert labels(shown(FIGURES, Shown.ALL, "bay c")) == ["Bed 12"]
     assert labels(shown(FIGURES, Shown.ALL, "copd 7")) == ["Bed 7"]
     assert shown(FIGURES, Shown.ALL, "nobody") == ()
+
+
+def test_a_relapse_is_not_responding_though_no_flag_is_open():
+    f = next(f for f in sample_ward() if f.label == "Bed 5")
+    assert shown([replace(f, flags=())], Shown.NOT_RESPONDING)
+    better = next(f for f in sample_ward() if f.label == "Bed 3")
+    assert not shown([replace(better, flags=())], Shown.NOT_RESPONDING)
 
 
 def test_a_gas_due_is_told_before_care_that_is_later_overdue():
