@@ -72,7 +72,7 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
     words = QFontMetricsF(theme.font(theme.type.caption, bold=True))
     states = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.state_word, lane.verdict_word)]
     dues = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.due_word, lane.flag_word)]
-    state = min(max([*states, px(60)]) + px(44), width * 0.21)
+    state = min(max([*states, px(60)]) + px(44), width * 0.2)
     due = min(max([*dues, px(60)]) + px(56), width * 0.24)
     folded = width - left - state - due < px(_LEAST_CLOCK)
     if folded:

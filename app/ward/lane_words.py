@@ -121,12 +121,10 @@ class LaneWords:
 
     def _state_word(self, f: EpisodeFigures, gas: GasFigure | None) -> str:
         """The state; a mask that is off comes first, since no setting acts then."""
-        off = off_mask_word(f, self.zone)
-        if gas is None:
-            state = translate("ward", "no gas yet")
-        else:  # the P/F was that on support
-            state = gas_state_word(f, gas) if off else state_now(f, gas, self.gas_unit)
-        return f"{off}; {state}" if off else state
+        if off := off_mask_word(f, self.zone):  # a state that is none of acidosis is left to its shape
+            acid = gas is not None and gas.state in ("severe", "acidotic")
+            return f"{off}; {gas_state_word(f, gas)}" if gas is not None and acid else off
+        return state_now(f, gas, self.gas_unit) if gas is not None else translate("ward", "no gas yet")
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")

@@ -95,6 +95,8 @@ def test_off_the_mask_stands_in_the_place_of_the_state_and_dims_the_settings():
     off = replace(bed.figures, now=NowFigure(off_mask_since=at("05:21")))
     lane = WORDS.lane(OnWard(off, course_of(bed.record, NOW)), first=False)
     assert lane.state_word == "mask off since 05:21; severe"
+    calm = replace(off, gases=(replace(off.gases[-1], state="resolved"),))
+    assert WORDS.lane(OnWard(calm, course_of(bed.record, NOW)), first=False).state_word == "mask off since 05:21"
     assert lane.off_mask
     assert lane.subtitle.endswith("mask off")
     assert "mask off since 05:21 (before: BPAP-ST" in lane.sentence
