@@ -140,7 +140,7 @@ def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str) -> str:
     """The state in a few words, the oxygen first where it is what fails: P/F 107, not acidotic."""
     state = gas_state_word(f, gas)
     if gas.off_support:
-        state = translate("headline", "{state} off support").format(state=state)
+        state = translate("headline", "{state}, last gas off support").format(state=state)
     return ", ".join(x for x in (pf_word(f, gas_unit), state) if x)
 
 

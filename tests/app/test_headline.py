@@ -59,7 +59,7 @@ def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
     assert state_now(f, f.gases[-1], "mmHg") == "P/F 107, not acidotic"
     assert state_now(f, f.gases[-1], "kPa") == "P/F 14.3 kPa, not acidotic"
     off = replace(f.gases[-1], off_support=True, state="acidotic")
-    assert state_now(f, off, "mmHg") == "P/F 107, acidotic off support"
+    assert state_now(f, off, "mmHg") == "P/F 107, acidotic, last gas off support"
 
 
 def test_the_mask_off_and_when() -> None:
