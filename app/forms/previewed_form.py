@@ -29,6 +29,7 @@ from app.forms.cells import Card
 from app.operations.outcome import Outcome
 from app.readers import reader_at
 from app.session import SessionModel
+from app.strip.settle_time import SettleTime
 from app.theme import Theme
 from app.words import Reader, sentence
 
@@ -48,7 +49,8 @@ class PreviewedForm(QDialog):
         self.model, self.gas_unit, self.theme = model, gas_unit, theme
         self.preview: Any = None
         self.asking = False
-        self._awaited, self._enter_pending = False, False
+        self._awaited, self._pressed_early = False, False
+        self.settle = SettleTime()
         self._sent: object = None
         self.title = QLabel(title)
         self.title.setProperty("role", "title")
@@ -199,7 +201,8 @@ class PreviewedForm(QDialog):
 
     def edited(self) -> None:
         """A field changed: what was asked before is asked anew."""
-        self.preview, self.asking, self._enter_pending = None, False, False
+        self.preview, self.asking, self._pressed_early = None, False, False
+        self.settle.clear()
         self._sent = self.request()
         lacks = self.lacks()
         self._awaited = self._sent is not None and not lacks
@@ -216,15 +219,13 @@ class PreviewedForm(QDialog):
             return
         self.preview, self._awaited = outcome.value, False
         self.show_extra()
-        if self._enter_pending and not self.questions():
-            self._record(confirmed=False)
-            return
-        self._enter_pending = False
+        if self._pressed_early:
+            self.settle.start()  # a second early press was meant for the fields, not for what they have become
         self.say(self._html())
 
     def refused(self, failure: Failure) -> None:
         """What the fields say cannot be recorded."""
-        self._awaited, self._enter_pending, self.asking = False, False, False
+        self._awaited, self._pressed_early, self.asking = False, False, False
         self.go.setEnabled(False)
         self.say(
             f"<b>{escape(self.tr('Not recorded.'))}</b> {escape(sentence(failure.message, self.reader()))}"
@@ -244,23 +245,25 @@ class PreviewedForm(QDialog):
 
     def submit(self) -> None:
         """Record what is shown; a question is asked first, and only a second Enter says yes."""
+        if not self.settle.is_over:
+            return
         if self.asking:
             self._record(confirmed=True)
         elif self.preview is not None and self.questions():
             self.asking = True
+            self.settle.start()
             ask = self.tr("Enter again says yes, Esc leaves it.")
             self.say(f"<b>{escape(' '.join(self.questions()))}</b> {escape(ask)}")
         elif self.preview is not None:
             self._record(confirmed=False)
         elif self._awaited:
-            self._enter_pending = True
+            self._pressed_early = True
 
     def _record(self, *, confirmed: bool) -> None:
         if not self.model.session.person:
             self.say(escape(self.tr("Nobody is signed in. Leave the form: Ctrl+I says who you are.")))
             return
         self.go.setEnabled(False)
-        self._enter_pending = False
         self.ask_record(self._sent, confirmed=confirmed)
 
     def was_recorded(self, outcome: Outcome[Any]) -> None:

@@ -84,7 +84,7 @@ def test_no_pin_is_asked_per_entry_and_change_person_closes_the_screen(qtbot, wi
     with open_window(qtbot, with_people) as window:
         sign_in(qtbot, window, "AB", PIN)
         until(qtbot, lambda: not window.keeping.lock.is_locked)
-        for line in ("rr 24", "rr 25"):
+        for line in ("rr 24", "hr 95"):
             head = window.model.session.head
             window.strip.set_text(line)
             settled(qtbot, window)

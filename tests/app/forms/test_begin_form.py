@@ -82,6 +82,7 @@ def test_the_checklist_keeps_yes_no_and_not_known_and_asks_before_an_absolute_on
     head = window.model.session.head
     qtbot.keyClick(form, Key.Key_Return)
     assert form.asking
+    form.settle.clear()
     assert "Speaks against support absolutely: Facial deformity or burns" in form.plain()
     assert window.model.session.head == head
     record = begin(qtbot, window, form).record
