@@ -10,7 +10,7 @@ from app.clock import REAL, Clock, running_from, still
 from app.operations import store as store_operations
 from app.operations.outcome import Outcome
 from app.runner import Runner
-from app.session import Changed, Session, SessionModel, What
+from app.session import POLL_MS, Changed, Session, SessionModel, What
 
 
 def test_session_follows_its_clock_unless_told_otherwise() -> None:
