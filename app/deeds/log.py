@@ -7,6 +7,7 @@ from app.operations import flag as flag_operations
 from app.operations.entry import Recorded
 from app.operations.outcome import Outcome
 from app.ward.lane_words import strongest_flag
+from app.ward.moves import label_told_apart
 from core.judgement.shapes import FlagFigure
 
 
@@ -114,7 +115,8 @@ class LogDeeds(FormDeeds):
         feed, key = self.window.feed, self.model.session.selection
         if feed is None or key is None or key not in feed.answers:
             return
-        labels = {k: a.figures.label for k, a in feed.answers.items()}
+        session = self.model.session
+        labels = {k: label_told_apart(feed.answers, k, session.moment(), session.zone) for k in feed.answers}
         dialog = CorrectDialog(
             self.model, feed.answers[key].record, labels, self.window.reader, self.window.theme, self.window
         )

@@ -6,6 +6,7 @@ from PySide6.QtCore import Qt
 from app import clock
 from app.chart.shapes import LaneKind
 from app.clock import Clock
+from app.dialogs.correct import CorrectDialog
 from app.operations import entry, episode
 from core.record.instant import MINUTE
 from storage.store import Store
@@ -45,6 +46,11 @@ def test_two_patients_of_one_bed_are_told_apart_wherever_a_line_is_logged(qtbot,
     assert window.strip.whom.text() == "Bed 7 (bed-7-second)"
     type_line(qtbot, window, "rr 30")
     until(qtbot, lambda: "Recorded for Bed 7 (bed-7-second)" in window.strip.plain())
+    window.actions_by_key["correct"].trigger()
+    dialog = next(d for d in window.findChildren(CorrectDialog) if d.isVisible())
+    assert dialog.whom.text() == "Bed 7 (bed-7-second)"
+    assert dialog.to.findText("Bed 7 (from 00:00)") >= 0
+    dialog.reject()
     window.select("bed-3")
     assert window.strip.whom.text() == "Bed 3"
 
