@@ -23,9 +23,7 @@ class AboutDialog(QDialog):
         title = QLabel(f"Luffmark {_version()}")
         title.setProperty("role", "title")
         column.addWidget(title)
-        built = self.tr("Free software under the Mozilla Public License 2.0. Built on Qt {qt}.").format(
-            qt=qVersion()
-        )
+        built = self.tr("Free software under the Mozilla Public License 2.0. Built on Qt {qt}.").format(qt=qVersion())
         for text in (intended_use(), *cautions(), built, LOINC_NOTICE):
             label = QLabel(text)
             label.setWordWrap(True)

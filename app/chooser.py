@@ -24,8 +24,6 @@ class Chooser(QComboBox):
         painter.setPen(pen)
         x, y, half = self.width() - self.height() / 2, self.height() / 2, self.height() / 9
         painter.drawPolyline(
-            QPolygonF(
-                [QPointF(x - half, y - half / 2), QPointF(x, y + half / 2), QPointF(x + half, y - half / 2)]
-            )
+            QPolygonF([QPointF(x - half, y - half / 2), QPointF(x, y + half / 2), QPointF(x + half, y - half / 2)])
         )
         painter.end()

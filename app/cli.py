@@ -82,13 +82,11 @@ def _showing(command: Command) -> None:
     figures.add_argument("episode", nargs="?", help="an episode's key; all when left out")
     _moments(figures)
 
-
     statistics = command("statistics", "shift figures of the ward over any span, as text, CSV or JSON")
     statistics.add_argument("--from", dest="start", type=moment, required=True, metavar="T", help="the span's start")
     statistics.add_argument("--to", dest="end", type=moment, required=True, metavar="T", help="the span's end")
     statistics.add_argument("--csv", type=Path, metavar="FILE", help="write a table; left out: text on the screen")
     statistics.add_argument("--as-known-at", type=moment, metavar="T", help="only what was recorded by then")
-
 
     replay = command("replay", "what a policy would have flagged in past episodes, or two policies side by side")
     replay.add_argument("--policy", type=Path, metavar="FILE", help="the policy; left out: the one in force")

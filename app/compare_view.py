@@ -119,9 +119,7 @@ class CompareView(QWidget):
         made = compare([self._ward[k] for k in keys], self._answers, self._gas_unit)
         self.chart.show_comparison(made)
         self._number(keys)
-        said = [
-            self.tr("Space ticks, Enter opens. {least} to {most} episodes.").format(least=LEAST, most=MOST)
-        ]
+        said = [self.tr("Space ticks, Enter opens. {least} to {most} episodes.").format(least=LEAST, most=MOST)]
         if made.left_out:
             said.append(self.tr("Start not recorded: {labels}.").format(labels=", ".join(made.left_out)))
         self.said.setText(" ".join(said))

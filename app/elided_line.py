@@ -31,6 +31,4 @@ class ElidedLine(QLabel):
         self._fit()
 
     def _fit(self) -> None:
-        self.setText(
-            QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width())
-        )
+        self.setText(QFontMetrics(self.font()).elidedText(self._whole, Qt.TextElideMode.ElideRight, self.width()))

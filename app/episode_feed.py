@@ -22,9 +22,7 @@ class EpisodeFeed(QObject):
     refreshed = Signal(object)
     """`EpisodeOnScreen`."""
 
-    def __init__(
-        self, model: SessionModel, ward: WardFeed, gas_unit: str, parent: QObject | None = None
-    ) -> None:
+    def __init__(self, model: SessionModel, ward: WardFeed, gas_unit: str, parent: QObject | None = None) -> None:
         super().__init__(parent)
         self._model, self._ward, self._gas_unit = model, ward, gas_unit
         self._kept: dict[str, PanelSet] = {}

@@ -171,9 +171,7 @@ class EpisodeView(QWidget):
             parts.append(str(place))
         ceiling = facts.get("ceiling_of_care")
         parts.append(
-            translate("episode", "ceiling: {ceiling}").format(
-                ceiling=ceiling or translate("episode", "not recorded")
-            )
+            translate("episode", "ceiling: {ceiling}").format(ceiling=ceiling or translate("episode", "not recorded"))
         )
         return ", ".join(parts)
 

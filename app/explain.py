@@ -124,9 +124,7 @@ class Explainer:
             yield text.format(who=flag.seen_by, time=wall(flag.seen_at, zone))
         if flag.settled_by and flag.settled_at is not None:
             text = translate("explain", "Settled by {who}, {time}: {why}")
-            yield text.format(
-                who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or ""
-            )
+            yield text.format(who=flag.settled_by, time=wall(flag.settled_at, zone), why=flag.settled_why or "")
 
     def response(self, response: ResponseFigure) -> Explanation:
         """A verdict: the baseline, the gas, what was compared against which noise."""
@@ -251,8 +249,7 @@ class Explainer:
             ("pH", gas.ph_text or (fixed(gas.ph, 2) if gas.ph is not None else None)),
             (
                 "PaCO2",
-                gas.paco2_text
-                or (gas_pressure(gas.paco2_mmHg, unit) if gas.paco2_mmHg is not None else None),
+                gas.paco2_text or (gas_pressure(gas.paco2_mmHg, unit) if gas.paco2_mmHg is not None else None),
             ),
             ("PaO2", gas_pressure(gas.pao2_mmHg, unit) if gas.pao2_mmHg is not None else None),
             ("FiO2", f"{fraction(gas.fio2)} ({gas.fio2_from})" if gas.fio2 is not None else None),

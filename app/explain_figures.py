@@ -64,9 +64,7 @@ def explain_score(key: str, score: ScoreFigure, reader: Reader, now: Instant | N
     entry = figure(key)
     notes = [sentence(m, reader) for m in dict.fromkeys(score.reasons.values())]
     if score.missing:
-        notes.append(
-            reader.translate("Missing inputs are taken at their best and at their worst, never as normal.")
-        )
+        notes.append(reader.translate("Missing inputs are taken at their best and at their worst, never as normal."))
     notes += _of_entry(entry, reader)
     return Explanation(
         title=f"{reader.translate(entry.name)}: {score_value(key, score, reader)}",

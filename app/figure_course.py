@@ -53,8 +53,10 @@ def _measured(found: ExpectedCO2, make: RowMaker) -> tuple[RowInput, ...]:
 
 def _at_minutes(minutes: int, value: CourseValue, change: RowInput, make: RowMaker) -> FigureRow:
     name = make.tr("{minutes} after it").format(minutes=formats.minutes(minutes))
-    parts = [_span("pH", value.ph, value.ph_low, value.ph_high, make, is_pressure=False),
-             _span("PaCO2", value.paco2_mmHg, value.paco2_low_mmHg, value.paco2_high_mmHg, make, is_pressure=True)]
+    parts = [
+        _span("pH", value.ph, value.ph_low, value.ph_high, make, is_pressure=False),
+        _span("PaCO2", value.paco2_mmHg, value.paco2_low_mmHg, value.paco2_high_mmHg, make, is_pressure=True),
+    ]
     text = ", ".join(p for p in parts if p)
     basis = make.say(value.basis)
     notes = (basis,) if text and basis else ()

@@ -161,9 +161,7 @@ def doubts_of(gases: Iterable[GasFigure], reader: Reader) -> dict[Instant, str]:
 
 def _gases(figure: DerivedFigure) -> tuple[Instant, ...]:
     """The moments of the gases that a figure was made from."""
-    return tuple(
-        dict.fromkeys(i.at for key, i in figure.inputs.items() if key in OF_A_GAS and i.at is not None)
-    )
+    return tuple(dict.fromkeys(i.at for key, i in figure.inputs.items() if key in OF_A_GAS and i.at is not None))
 
 
 def with_lines(row: FigureRow, lines: Iterable[str]) -> FigureRow:

@@ -145,9 +145,7 @@ class LogStrip(QFrame):
             button.setVisible(not tight)
         self._fit_words(tight)
         direction = QBoxLayout.Direction
-        self._row.setDirection(
-            direction.LeftToRight if rest >= self._theme.px(240) else direction.TopToBottom
-        )
+        self._row.setDirection(direction.LeftToRight if rest >= self._theme.px(240) else direction.TopToBottom)
 
     # whom it is for
 
@@ -247,9 +245,7 @@ class LogStrip(QFrame):
 
     def _request(self, confirmed: bool) -> LineRequest:
         assert self._record is not None
-        return LineRequest(
-            self._record.key, self.line.text(), self._zone, confirmed, gas_unit=self._gas_unit
-        )
+        return LineRequest(self._record.key, self.line.text(), self._zone, confirmed, gas_unit=self._gas_unit)
 
     def _previewed(self, outcome: Outcome[Preview]) -> None:
         if self._awaited is None or self._awaited != self.line.text():
@@ -273,9 +269,7 @@ class LogStrip(QFrame):
         if options and failure.message.key in ("line.word_unknown", "line.value_missing", "value.missing"):
             self._become(State.REFUSED, completion_html(options, self._theme.colours.ink_quiet))
         else:
-            self._become(
-                State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader()))
-            )
+            self._become(State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader())))
 
     def _complete(self) -> None:
         options = completions(self.line.text(), self.line.cursorPosition())
@@ -319,17 +313,13 @@ class LogStrip(QFrame):
     def take(self, recorded: Recorded) -> None:
         """Something was recorded, here or by a form: remember it for the undo, and say so."""
         self.remember(recorded)
-        whom = self.tr("Recorded for {label}").format(
-            label=self._labels.get(recorded.episode, recorded.episode)
-        )
+        whom = self.tr("Recorded for {label}").format(label=self._labels.get(recorded.episode, recorded.episode))
         what = recorded_words(recorded.entries, self._model.session.now(), self._reader())
         self._become(State.TOLD, marked(f"{whom}, {what}.", self.tr("Ctrl+Z undoes it.")))
         self.recorded.emit(recorded)
 
     def _failed(self, failure: Failure) -> None:
-        self._become(
-            State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader()))
-        )
+        self._become(State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader())))
 
     # undo
 

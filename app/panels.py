@@ -72,13 +72,9 @@ def checked(panel: Panel) -> Panel:
         raise refuse("panel.empty", title=panel.title, accepted="one channel or more")
     for c in panel.channels:
         if not can_be_drawn(c):
-            raise refuse(
-                "panel.channel_unknown", title=panel.title, channel=c, accepted=", ".join(drawable())
-            )
+            raise refuse("panel.channel_unknown", title=panel.title, channel=c, accepted=", ".join(drawable()))
     if len(panel.channels) > MOST_CHANNELS:
-        raise refuse(
-            "panel.too_many_channels", title=panel.title, count=len(panel.channels), accepted=MOST_CHANNELS
-        )
+        raise refuse("panel.too_many_channels", title=panel.title, count=len(panel.channels), accepted=MOST_CHANNELS)
     if len(units_of(panel.channels)) > 2:
         raise refuse(
             "panel.too_many_units",

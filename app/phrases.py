@@ -88,9 +88,7 @@ def change_word(stretch: Stretch) -> str:
         parts.append(settings_word(stretch.settings))
     if changed.keys() & {"fio2", "o2_flow"}:
         s = stretch.settings
-        parts.append(
-            fraction(s.fio2) if known(s.fio2) else f"{trimmed(s.o2_flow)} L/min" if known(s.o2_flow) else ""
-        )
+        parts.append(fraction(s.fio2) if known(s.fio2) else f"{trimmed(s.o2_flow)} L/min" if known(s.o2_flow) else "")
     if not parts:
         key = next(iter(changed), "")
         parts.append(f"{channel_name(key)} {quantity(key, getattr(stretch.settings, key))}" if key else "")
@@ -170,7 +168,5 @@ def support_now(
         parts.append(f"{trimmed(ipap)}/{trimmed(epap)}")
     elif epap is not None:
         parts.append(trimmed(epap))
-    oxygen = (
-        fraction(fio2) if fio2 is not None else f"{trimmed(o2_flow)} L/min O2" if o2_flow is not None else ""
-    )
+    oxygen = fraction(fio2) if fio2 is not None else f"{trimmed(o2_flow)} L/min O2" if o2_flow is not None else ""
     return ", ".join(p for p in (" ".join(p for p in parts if p), oxygen) if p)

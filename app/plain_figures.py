@@ -147,5 +147,3 @@ def _levers(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
     for lever in f.levers:
         can = "can act" if lever.can_act else "cannot act"
         yield f"{lever_name(lever.key, lines.reader)}: {can}. {lines.sentences((*lever.why, *lever.limits))}".rstrip()
-
-

@@ -34,7 +34,12 @@ Beat = Callable[[], None]
 
 
 def replay_all(
-    past: Iterable[PastEpisode], count: int, policies: Sequence[str], span: Span, *, beat: Beat,
+    past: Iterable[PastEpisode],
+    count: int,
+    policies: Sequence[str],
+    span: Span,
+    *,
+    beat: Beat,
     workers: int | None = None,
 ) -> Iterator[ReplayedEpisode | None]:
     """Replay `count` episodes under the policies' TOML texts, in the order in which they are done.

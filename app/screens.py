@@ -39,9 +39,7 @@ DIALOGS: Final = (
 _PATIENCE_S: Final = 60.0
 
 
-def draw_all(
-    folder: Path, store_path: Path | None = None, *, passphrase: str | None = None
-) -> tuple[Path, ...]:
+def draw_all(folder: Path, store_path: Path | None = None, *, passphrase: str | None = None) -> tuple[Path, ...]:
     """Draw every screen into `folder`; the pictures' paths. The sample shift where no store is given.
 
     Raises:
@@ -61,9 +59,7 @@ def draw_all(
     return tuple(made)
 
 
-def _session(
-    scratch: Path, store_path: Path | None, passphrase: str | None
-) -> tuple[Session, Callable[[], Store]]:
+def _session(scratch: Path, store_path: Path | None, passphrase: str | None) -> tuple[Session, Callable[[], Store]]:
     if store_path is not None:
         from app.local_zone import local_zone
 
@@ -98,9 +94,7 @@ def _draw(
     return made
 
 
-def _screens(
-    window: MainWindow, session: Session, opener: Callable[[], Store]
-) -> Iterator[tuple[str, QWidget]]:
+def _screens(window: MainWindow, session: Session, opener: Callable[[], Store]) -> Iterator[tuple[str, QWidget]]:
     _pass_events()
     yield "first", window
     window.show_model(SessionModel(session, Runner(opener), window))
@@ -209,9 +203,7 @@ def _wait_for(window: MainWindow, done: Callable[[], bool]) -> None:
     began = monotonic()
     while not done():
         if monotonic() - began > _PATIENCE_S:
-            raise RuntimeError(
-                f"the window {window.windowTitle()!r} did not get its figures in {_PATIENCE_S:.0f} s"
-            )
+            raise RuntimeError(f"the window {window.windowTitle()!r} did not get its figures in {_PATIENCE_S:.0f} s")
         QApplication.processEvents(QEventLoop.ProcessEventsFlag.WaitForMoreEvents, 20)
     _pass_events()
 

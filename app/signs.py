@@ -15,9 +15,7 @@ What = Verdict | Tier | GasState
 class Sign(QWidget):
     """One sign, as high as a line of text. Its word stands beside it, so it is silent to screen readers."""
 
-    def __init__(
-        self, theme: Theme, what: What, *, verdict: Verdict | None = None, quiet: bool = False
-    ) -> None:
+    def __init__(self, theme: Theme, what: What, *, verdict: Verdict | None = None, quiet: bool = False) -> None:
         super().__init__()
         self._theme, self._what, self._verdict, self._quiet = theme, what, verdict, quiet
         self.setFixedSize(self.sizeHint())
@@ -33,9 +31,7 @@ class Sign(QWidget):
         middle = side / 2
         if isinstance(self._what, Verdict):
             inset = side * 0.15
-            verdict_sign(
-                painter, self._theme, self._what, QRectF(inset, inset, side - 2 * inset, side - 2 * inset)
-            )
+            verdict_sign(painter, self._theme, self._what, QRectF(inset, inset, side - 2 * inset, side - 2 * inset))
         elif isinstance(self._what, Tier):
             pennant(painter, self._theme, self._what, side * 0.14, side * 0.94, side * 0.86, self._quiet)
         else:

@@ -84,8 +84,7 @@ def table_of_stack(spec: StackSpec) -> Table:
     ]
     if spec.ribbon is not None:
         found += [
-            (t.at, (wall(t.at, str(spec.zone)), t.word, "", "", spec.ribbon.title, ""))
-            for t in spec.ribbon.ticks
+            (t.at, (wall(t.at, str(spec.zone)), t.word, "", "", spec.ribbon.title, "")) for t in spec.ribbon.ticks
         ]
     found.sort(key=lambda row: row[0])
     return Table(spec.name, heads, tuple(row for _, row in found[-MOST_ROWS:]), spec.summary)
@@ -101,9 +100,7 @@ def _rows(trace: Trace, panel: str, zone: str) -> list[tuple[int, tuple[str, ...
     made: list[tuple[int, tuple[str, ...]]] = []
     for n in np.flatnonzero(np.isfinite(trace.v)):
         at = int(trace.t[n])
-        marks = (
-            [words[Look(trace.looks[n])]] if trace.looks is not None and Look(trace.looks[n]) in words else []
-        )
+        marks = [words[Look(trace.looks[n])]] if trace.looks is not None and Look(trace.looks[n]) in words else []
         marks += [span.word for span in trace.doubts if span.start <= at < span.end]
         made.append(
             (
@@ -143,9 +140,7 @@ def table_of_comparison(comparison: Comparison) -> Table:
         for h, v in zip(line.hours, line.values, strict=True)
         if v == v
     )
-    return Table(
-        translate("tables", "Episodes by hours since start"), heads, rows, "\n".join(words_of(comparison))
-    )
+    return Table(translate("tables", "Episodes by hours since start"), heads, rows, "\n".join(words_of(comparison)))
 
 
 def table_of_page(window: MainWindow) -> Table | None:

@@ -226,11 +226,7 @@ class WardView(QWidget):
             self.first.show_first("", "", "", None)
             return
         flag = strongest_flag(top)
-        why = (
-            sentence(top.concern.why, words.reader)
-            if top.concern.why is not None
-            else words.lane_sentence(top)
-        )
+        why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)
         self.first.show_first(top.episode, top.label, why, Tier(flag.tier) if flag is not None else None)
 
     def _tell_shift(self, content: WardContent) -> None:

@@ -74,9 +74,7 @@ _GIVEN: dict[str, Meaning] = {
 """Codes that we give out and take: each confirmed by its published name."""
 
 _TAKEN: dict[str, Meaning] = {
-    "2708-6": Meaning(
-        "sao2", "arterial"
-    ),  # beside 59408-5 it is a pulse oximeter's: see `meaning_of_codings`
+    "2708-6": Meaning("sao2", "arterial"),  # beside 59408-5 it is a pulse oximeter's: see `meaning_of_codings`
     "3150-0": Meaning("gas_fio2"),
     "11555-0": Meaning("be"),  # "Base excess in Blood by calculation", as HL7's example f002 names it
     "718-7": Meaning("hb"),

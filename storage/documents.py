@@ -35,8 +35,7 @@ def listed(connection: sa.Connection) -> tuple[DocumentFacts, ...]:
         .order_by(d.seq)
     )
     return tuple(
-        DocumentFacts(r[0], r[1], r[2], r[3], bytes(r[4]).hex(), r[5], r[6], r[7])
-        for r in connection.execute(query)
+        DocumentFacts(r[0], r[1], r[2], r[3], bytes(r[4]).hex(), r[5], r[6], r[7]) for r in connection.execute(query)
     )
 
 
@@ -81,7 +80,5 @@ def policies(connection: sa.Connection, head: int) -> tuple[KeptPolicy, ...]:
 def policy(connection: sa.Connection, head: int) -> tuple[str, str] | None:
     """The (hash, text) of the newest policy up to a sequence."""
     p = s.policy.c
-    row = connection.execute(
-        sa.select(p.hash, p.text).where(p.seq <= head).order_by(p.seq.desc()).limit(1)
-    ).first()
+    row = connection.execute(sa.select(p.hash, p.text).where(p.seq <= head).order_by(p.seq.desc()).limit(1)).first()
     return (str(row[0]), str(row[1])) if row else None

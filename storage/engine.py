@@ -58,9 +58,7 @@ def raw_connection(path: Path, key: bytes | None, *, mode: str = "rw", busy: flo
 class Database:
     """The engine of one store: short readers, one writer at a time, errors as `StoreError`."""
 
-    def __init__(
-        self, path: Path, key: bytes | None, *, mode: str = "rw", busy: float = BUSY_SECONDS
-    ) -> None:
+    def __init__(self, path: Path, key: bytes | None, *, mode: str = "rw", busy: float = BUSY_SECONDS) -> None:
         self.path = path
         self.read_only = mode in ("ro", "immutable")
         self._key, self._busy = key, busy

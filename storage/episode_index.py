@@ -32,9 +32,7 @@ def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -
 
 def _touched_ends(connection: sa.Connection, draft: DraftBatch) -> set[str]:
     touched = {d.entry.episode for d in draft.entries if d.entry.channel == ENDS}
-    moved = [
-        d.entry.replaces for d in draft.entries if d.entry.channel == ENDS and d.entry.action is Action.MOVE
-    ]
+    moved = [d.entry.replaces for d in draft.entries if d.entry.channel == ENDS and d.entry.action is Action.MOVE]
     if moved:
         query = sa.select(s.entry.c.moved_from).where(s.entry.c.replaces.in_(moved))
         touched |= {row[0] for row in connection.execute(query) if row[0]}
@@ -60,9 +58,7 @@ def _note(connection: sa.Connection, episode: str, last_at: int, receipt: Receip
 def ended_at(connection: sa.Connection, episode: str, head: int) -> int | None:
     """When an episode ended by what stands, or None while it is open."""
     entries = episode_entries(connection, episode, head)
-    ends = [
-        x.entry.number for x in standing(entries) if x.entry.channel == ENDS and x.entry.episode == episode
-    ]
+    ends = [x.entry.number for x in standing(entries) if x.entry.channel == ENDS and x.entry.episode == episode]
     return int(ends[-1]) if ends and ends[-1] is not None else None
 
 

@@ -64,9 +64,7 @@ def check_passphrase(passphrase: str) -> None:
         RecordError: `passphrase.too_short`.
     """
     if len(_normal(passphrase)) < MIN_PASSPHRASE:
-        raise refuse(
-            "passphrase.too_short", length=len(passphrase), accepted=f"{MIN_PASSPHRASE} or more characters"
-        )
+        raise refuse("passphrase.too_short", length=len(passphrase), accepted=f"{MIN_PASSPHRASE} or more characters")
 
 
 def new_key(store_id: str, passphrase: str, cost: Cost = DEFAULT_COST) -> NewKey:
@@ -116,9 +114,7 @@ def change_passphrase(text: str, secret: str, new: str, cost: Cost = DEFAULT_COS
     check_passphrase(new)
     key, envelope = open_envelope(text, secret), _read(text)
     kept = [w for w in envelope["wraps"] if w["kind"] != "passphrase"]
-    return _sealed(
-        envelope["store_id"], [_wrap(key, envelope["store_id"], "passphrase", new, cost), *kept], key
-    )
+    return _sealed(envelope["store_id"], [_wrap(key, envelope["store_id"], "passphrase", new, cost), *kept], key)
 
 
 def change_recovery_code(text: str, secret: str, cost: Cost = DEFAULT_COST) -> tuple[str, str]:
@@ -172,9 +168,7 @@ def _derived(secret: str, kind: str, salt: bytes, cost: Cost) -> bytes:
     from cryptography.hazmat.primitives.kdf.argon2 import Argon2id
 
     material = _code(secret).encode() if kind == "recovery" else _normal(secret)
-    kdf = Argon2id(
-        salt=salt, length=KEY_BYTES, iterations=cost.passes, lanes=cost.lanes, memory_cost=cost.memory_kib
-    )
+    kdf = Argon2id(salt=salt, length=KEY_BYTES, iterations=cost.passes, lanes=cost.lanes, memory_cost=cost.memory_kib)
     return kdf.derive(material)
 
 
@@ -204,9 +198,7 @@ def _unwrap(wrap: dict[str, Any], store_id: str, secret: str) -> bytes | None:
     cost = Cost(wrap["memory_kib"], wrap["passes"], wrap["lanes"])
     cipher = ChaCha20Poly1305(_derived(secret, wrap["kind"], bytes.fromhex(wrap["salt"]), cost))
     try:
-        return cipher.decrypt(
-            bytes.fromhex(wrap["nonce"]), bytes.fromhex(wrap["sealed"]), _bound(store_id, wrap)
-        )
+        return cipher.decrypt(bytes.fromhex(wrap["nonce"]), bytes.fromhex(wrap["sealed"]), _bound(store_id, wrap))
     except InvalidTag:
         return None
 

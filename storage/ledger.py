@@ -48,9 +48,7 @@ def append_batch(connection: sa.Connection, draft: DraftBatch, now: Instant) -> 
                    header["hash"], header["skew"])  # fmt: skip
 
 
-def _header(
-    draft: DraftBatch, rows: list[tuple[sa.Table, Row]], before: sa.RowMapping | None, now: Instant
-) -> Row:
+def _header(draft: DraftBatch, rows: list[tuple[sa.Table, Row]], before: sa.RowMapping | None, now: Instant) -> Row:
     earliest = now if before is None else before["recorded_at"]
     number = 1 if before is None else before["seq"] + 1
     for _table, row in rows:

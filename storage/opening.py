@@ -112,9 +112,7 @@ def _check_free(path: Path) -> None:
 
 def _stamp(connection: sa.Connection) -> None:
     """Say which migration the schema stands at, without importing the migration library."""
-    table = sa.Table(
-        "alembic_version", sa.MetaData(), sa.Column("version_num", sa.String(32), primary_key=True)
-    )
+    table = sa.Table("alembic_version", sa.MetaData(), sa.Column("version_num", sa.String(32), primary_key=True))
     table.create(connection)
     connection.execute(sa.insert(table), {"version_num": REVISION})
 

@@ -26,9 +26,7 @@ _ENTRY_COLUMNS = (
     _e.episode_id, _e.channel, _e.at, _e.number, _e.words, _e.raw, _e.raw_unit, _e.decimals, _e.zone, _e.by,
     _e.note, _e.doubt, _e.action, _e.replaces, _e.reason, _e.source, _e.seq, _e.id, _b.recorded_at,
 )  # fmt: skip
-_SELECT_ENTRIES: sa.Select[Any] = sa.select(*_ENTRY_COLUMNS).join_from(
-    s.entry, s.batch, _e.batch_seq == _b.seq
-)
+_SELECT_ENTRIES: sa.Select[Any] = sa.select(*_ENTRY_COLUMNS).join_from(s.entry, s.batch, _e.batch_seq == _b.seq)
 
 
 def _entry(row: sa.Row[Any]) -> Entry:
@@ -50,9 +48,7 @@ def episode_entries(connection: sa.Connection, episode: str, head: int) -> tuple
     Beside the episode's own these are the entries it shares a chain of moves with: an entry moved here needs
     the one it began as, an entry moved away needs the one that took it.
     """
-    own = connection.execute(
-        _SELECT_ENTRIES.where((_e.episode_id == episode) & (_e.seq <= head)).order_by(_e.seq)
-    )
+    own = connection.execute(_SELECT_ENTRIES.where((_e.episode_id == episode) & (_e.seq <= head)).order_by(_e.seq))
     found = {e.id: e for e in map(_entry, own)}
     away = connection.execute(_SELECT_ENTRIES.where((_e.moved_from == episode) & (_e.seq <= head)))
     fresh = [e for e in map(_entry, away) if e.id not in found]
@@ -82,10 +78,7 @@ def texts_of(connection: sa.Connection, channel: str) -> tuple[tuple[str, str], 
 
 def channel_entries(connection: sa.Connection, channel: str) -> list[Entry]:
     """Every entry of a channel in all episodes, in order of sequence. It reads the whole table: for checks alone."""
-    return [
-        _entry(row)
-        for row in connection.execute(_SELECT_ENTRIES.where(_e.channel == channel).order_by(_e.seq))
-    ]
+    return [_entry(row) for row in connection.execute(_SELECT_ENTRIES.where(_e.channel == channel).order_by(_e.seq))]
 
 
 def _add_chains(
@@ -100,9 +93,7 @@ def _add_chains(
         fresh = [e for e in followers if e.id not in found]
 
 
-def _where_in(
-    connection: sa.Connection, column: sa.ColumnElement[str], ids: Iterable[str], head: int
-) -> list[Entry]:
+def _where_in(connection: sa.Connection, column: sa.ColumnElement[str], ids: Iterable[str], head: int) -> list[Entry]:
     wanted = list(ids)
     out: list[Entry] = []
     for start in range(0, len(wanted), _IN_LIMIT):

@@ -50,9 +50,7 @@ def check_entry(new: NewEntry, lookup: Lookup) -> None:
         raise refuse("entry.time_out_of_range", value=new.at, accepted="1900 to 2199")
     _check_texts(new)
     if new.number is not None and not isfinite(new.number):
-        raise refuse(
-            "entry.not_finite", channel=new.channel, value=str(new.number), accepted="a finite number"
-        )
+        raise refuse("entry.not_finite", channel=new.channel, value=str(new.number), accepted="a finite number")
     if new.action in (Action.FLAG, Action.DUE):
         return
     known = channel(new.channel)
@@ -95,9 +93,7 @@ def _check_value(known: Channel, new: NewEntry) -> None:
     elif known.kind in (Kind.CHOICE, Kind.TEXT) and not new.words:
         raise refuse("entry.no_words", channel=known.key, accepted="a text")
     elif known.kind is Kind.CHOICE and not known.open_choice and new.words not in known.choices:
-        raise refuse(
-            "value.not_a_choice", channel=known.key, value=new.words, accepted=" | ".join(known.choices)
-        )
+        raise refuse("value.not_a_choice", channel=known.key, value=new.words, accepted=" | ".join(known.choices))
 
 
 def _check_span(new: NewEntry) -> None:
@@ -105,9 +101,7 @@ def _check_span(new: NewEntry) -> None:
     if new.number is None or new.number != int(new.number):
         raise refuse("entry.no_span", action=new.action, accepted="whole microseconds in number")
     if not is_device_channel(new.channel):
-        raise refuse(
-            "entry.not_a_device_channel", channel=new.channel, accepted="a numeric device or vital channel"
-        )
+        raise refuse("entry.not_a_device_channel", channel=new.channel, accepted="a numeric device or vital channel")
     if new.action is Action.MASK and new.number < new.at:
         raise refuse("entry.span_backwards", accepted="an end at or after the start")
 

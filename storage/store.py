@@ -158,11 +158,7 @@ class Store(StoreKept):
     def head_known_at(self, known_at: Instant) -> int:
         """The largest sequence recorded by a moment; 0 when nothing had been."""
         b = s.batch.c  # recording times never step back, so the newest batch by then has the largest sequence
-        query = (
-            sa.select(b.last_seq)
-            .where(b.recorded_at <= known_at)
-            .order_by(b.recorded_at.desc(), b.seq.desc())
-        )
+        query = sa.select(b.last_seq).where(b.recorded_at <= known_at).order_by(b.recorded_at.desc(), b.seq.desc())
         with self._opened.database.read() as connection:
             return int(connection.execute(query.limit(1)).scalar() or 0)
 
@@ -242,9 +238,7 @@ class Store(StoreKept):
         with self._opened.database.read() as connection:
             return reading.episode_entries(connection, episode, _ALL if head is None else head)
 
-    def samples(
-        self, episode: str, head: int | None = None, channel: str | None = None
-    ) -> tuple[DeviceSamples, ...]:
+    def samples(self, episode: str, head: int | None = None, channel: str | None = None) -> tuple[DeviceSamples, ...]:
         """The device samples of an episode, one block per channel, with later blocks, masks and shifts applied."""
         top = _ALL if head is None else head
         with self._opened.database.read() as connection:

@@ -76,9 +76,7 @@ def _chain(connection: sa.Connection) -> list[Message]:
     return found
 
 
-def _link(
-    header: dict[str, Any], own: list[_Digest], hash_before: str, seq_before: int, number: int
-) -> str | None:
+def _link(header: dict[str, Any], own: list[_Digest], hash_before: str, seq_before: int, number: int) -> str | None:
     """What is wrong with one link of the chain, or None."""
     if header["seq"] != number:
         return "missing_batch"

@@ -39,8 +39,8 @@ class EnvelopeCurve(pg.PlotCurveItem):  # type: ignore[misc]  # pyqtgraph has no
 
     def dataBounds(
         self,
-        ax: int,
-        frac: float = 1.0,
+        ax: int,  # noqa: ARG002
+        frac: float = 1.0,  # noqa: ARG002
         orthoRange: object = None,  # noqa: ARG002
     ) -> tuple[None, None]:
         return None, None  # ranges are ours; nothing asks the data for them

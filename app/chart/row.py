@@ -126,7 +126,7 @@ class Layer(QGraphicsItem):
     def paint(
         self,
         painter: QPainter,
-        option: QStyleOptionGraphicsItem,
+        option: QStyleOptionGraphicsItem,  # noqa: ARG002
         widget: QWidget | None = None,  # noqa: ARG002
     ) -> None:
         self._draw(painter)
@@ -155,7 +155,7 @@ class CrossLine(QGraphicsItem):
     def paint(
         self,
         painter: QPainter,
-        option: QStyleOptionGraphicsItem,
+        option: QStyleOptionGraphicsItem,  # noqa: ARG002
         widget: QWidget | None = None,  # noqa: ARG002
     ) -> None:
         painter.fillRect(self.boundingRect(), self._colour)

@@ -28,9 +28,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
     return 0
 
 
-def _deidentified(
-    context: Context, store: Store, request: operations.ExportRequest, value: dict[str, object]
-) -> int:
+def _deidentified(context: Context, store: Store, request: operations.ExportRequest, value: dict[str, object]) -> int:
     from app.export_words import statement_text
 
     told = operations.write_deidentified(store, context.by, context.now(), request).value

@@ -56,9 +56,7 @@ def _put(context: Context, args: argparse.Namespace) -> int:
     try:
         wrapped = json.loads(text)
     except json.JSONDecodeError as error:
-        raise refuse(
-            "mapping.unreadable", detail=error.msg, accepted="JSON as `mapping propose` prints it"
-        ) from None
+        raise refuse("mapping.unreadable", detail=error.msg, accepted="JSON as `mapping propose` prints it") from None
     if isinstance(wrapped, dict) and "mapping" in wrapped:
         text = json.dumps(wrapped["mapping"])
     mapping = from_text(text)

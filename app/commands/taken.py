@@ -24,9 +24,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
             return 0
         meant = [s for s in found if s.id.startswith(args.withdraw)]
         if len(meant) != 1:
-            raise refuse(
-                "intake.unknown_source", value=args.withdraw, accepted="the beginning of one id of the list"
-            )
+            raise refuse("intake.unknown_source", value=args.withdraw, accepted="the beginning of one id of the list")
         made = operations.withdraw(store, context.by, context.now(), meant[0].id).value
     text = f"{made.name}: {made.entries} entries and {made.sample_spans} span(s) of device samples withdrawn."
     if made.kept:

@@ -94,9 +94,7 @@ def _row(
     return Row(key, title, shown.unit, shown.decimals, low - air, high + air, tuple(lines))
 
 
-def _values(
-    key: str, one: OnWard, answer: EpisodeAnswer, policy: Policy
-) -> tuple[np.ndarray, np.ndarray]:
+def _values(key: str, one: OnWard, answer: EpisodeAnswer, policy: Policy) -> tuple[np.ndarray, np.ndarray]:
     if key == "sf":
         return sf_course(answer.record, one.course.until, policy)
     if key == "pressure_support":

@@ -107,9 +107,7 @@ class FileDeeds(Doer):
     def open_path(self, path: Path, *, passphrase: str | None = None, create: bool = False) -> None:
         """Open a store, or make it first."""
         self._last = _Opening(path, passphrase, create)
-        opener: Opener = partial(
-            _create if create else _open, path, passphrase, self.window.preferences.person
-        )
+        opener: Opener = partial(_create if create else _open, path, passphrase, self.window.preferences.person)
         session = Session(path, zone=local_zone(), clock=REAL, person=self.window.preferences.person)
         self.window.prefer(recent_stores=self.window.preferences.with_store(str(path)).recent_stores)
         self.show(session, opener)

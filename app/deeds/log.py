@@ -57,9 +57,7 @@ class LogDeeds(FormDeeds):
         flag = self._flag()
         if flag is not None:
             request = flag_operations.FlagRequest(self.model.session.selection or "", flag.flag_id)
-            self.model.ask(
-                flag_operations.see, request, done=self._flag_said, failed=self.window.show_failure
-            )
+            self.model.ask(flag_operations.see, request, done=self._flag_said, failed=self.window.show_failure)
 
     def do_settle_flag(self) -> None:
         """Ask for the reason, then settle the chosen flag, else the strongest open one."""
@@ -67,9 +65,7 @@ class LogDeeds(FormDeeds):
 
         flag = self._flag()
         if flag is not None:
-            self._settling = SettleDialog(
-                flag, self.window.reader, self._settle, self.window.theme, self.window
-            )
+            self._settling = SettleDialog(flag, self.window.reader, self._settle, self.window.theme, self.window)
             self._settling.open()
 
     def _settle(self, flag: FlagFigure, reason: str) -> None:

@@ -56,9 +56,7 @@ class ViewDeeds(Doer):
             pointed = self.pages.episode.gas_pointed_at()
             if pointed is not None:
                 return self.of_payload(pointed)
-            return next(
-                (f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None
-            )
+            return next((f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None)
         if self.pages.name == "map":
             gas = self.pages.map.map.chosen
             return self.of_payload(gas.payload.gas) if gas is not None else None

@@ -74,9 +74,7 @@ class IntakeDialog(AskingDialog):
         self.table.setWordWrap(True)
         self.table.verticalHeader().hide()
         for column in range(3):
-            self.table.horizontalHeader().setSectionResizeMode(
-                column, QHeaderView.ResizeMode.ResizeToContents
-            )
+            self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
         self.table.horizontalHeader().setSectionResizeMode(3, QHeaderView.ResizeMode.Stretch)
         self.table.horizontalHeader().sectionResized.connect(self._fit_rows)
         self.leave_out = QCheckBox(self.tr("Leave the refused rows out; this is recorded"))
@@ -108,9 +106,7 @@ class IntakeDialog(AskingDialog):
         self.bar.setRange(0, 0)
         self.left.clear()
         self._clock.start()
-        self._number = self._model.ask(
-            intake_operations.read, self._request, done=self._read, failed=self._failed
-        )
+        self._number = self._model.ask(intake_operations.read, self._request, done=self._read, failed=self._failed)
 
     def _patient_said(self, identifier: str, episode: str) -> None:
         """A person says whose an identifier is: the file is read again with it."""
@@ -175,9 +171,7 @@ class IntakeDialog(AskingDialog):
             )
         if intake.doubts:
             parts.append(
-                self.tr("{count} rows are in doubt: they are taken and marked.").format(
-                    count=len(intake.doubts)
-                )
+                self.tr("{count} rows are in doubt: they are taken and marked.").format(count=len(intake.doubts))
             )
         if intake.aside_count:
             text = self.tr("{count} values are of no channel here or have no value: they are left aside.")

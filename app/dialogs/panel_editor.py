@@ -190,9 +190,7 @@ class PanelEditor(QDialog):
             item = QListWidgetItem(_named(channel))
             item.setData(_KEY, channel)
             item.setFlags(item.flags() | Qt.ItemFlag.ItemIsUserCheckable)
-            item.setCheckState(
-                Qt.CheckState.Checked if channel in panel.channels else Qt.CheckState.Unchecked
-            )
+            item.setCheckState(Qt.CheckState.Checked if channel in panel.channels else Qt.CheckState.Unchecked)
             self.channels.addItem(item)
 
     def _chosen(self) -> None:

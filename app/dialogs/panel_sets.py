@@ -22,9 +22,7 @@ class PanelSets(QWidget):
     saved = Signal(str)
     forgotten = Signal(str)
 
-    def __init__(
-        self, sets: Mapping[str, PanelSet], family: str, indication: str, own: bool, theme: Theme
-    ) -> None:
+    def __init__(self, sets: Mapping[str, PanelSet], family: str, indication: str, own: bool, theme: Theme) -> None:
         super().__init__()
         self._sets = dict(sets)
         self.named, self.kept_for = Chooser(), Chooser()

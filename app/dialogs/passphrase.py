@@ -138,9 +138,7 @@ class OpenStoreDialog(SecretDialog):
 class ChangePassphraseDialog(SecretDialog):
     """Hands the old secret, the new passphrase and whether a new code is wanted to `change`."""
 
-    def __init__(
-        self, change: Callable[[str, str, bool], None], theme: Theme, parent: QWidget | None = None
-    ) -> None:
+    def __init__(self, change: Callable[[str, str, bool], None], theme: Theme, parent: QWidget | None = None) -> None:
         super().__init__("", "", theme, parent)
         self.setWindowTitle(self.tr("Change passphrase"))
         self.go.setText(self.tr("Change it"))

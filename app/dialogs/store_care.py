@@ -340,5 +340,3 @@ class BackupsDialog(AskingDialog):
         )
         if chosen:
             self.witness_wanted.emit(Path(chosen))
-
-

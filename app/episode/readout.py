@@ -62,9 +62,7 @@ class Readout(QFrame):
             return
         line = round(theme.px(theme.type.body) * 1.45)
         self._settings.setFixedHeight(line * (1 if theme.text_scale < 1.3 else 2 if theme.text_scale < 1.75 else 3))
-        self._values.setFixedHeight(
-            line * (2 if theme.text_scale < 1.3 else 3 if theme.text_scale < 1.75 else 4)
-        )
+        self._values.setFixedHeight(line * (2 if theme.text_scale < 1.3 else 3 if theme.text_scale < 1.75 else 4))
 
     def show_moment(
         self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool
@@ -80,9 +78,7 @@ class Readout(QFrame):
             f"<b>{escape(head)}</b> &nbsp; {escape(settings)} <span style='color:{quiet}'>{escape(age)}</span>"
         )
         parts = [self._value(r, at) for r in _once(readings)]
-        self._values.setText(
-            " &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment"))
-        )
+        self._values.setText(" &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment")))
         self._values.setAccessibleName(self.plain())
 
     def plain(self) -> str:

@@ -50,9 +50,7 @@ USUAL: Final = {
 _STEPS: Final = (0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200, 500)
 
 
-def scales_of(
-    panel: Panel, traces: Sequence[Trace], gas_unit: str, areas: Sequence[Area] = ()
-) -> tuple[Scale, ...]:
+def scales_of(panel: Panel, traces: Sequence[Trace], gas_unit: str, areas: Sequence[Area] = ()) -> tuple[Scale, ...]:
     """One scale for each unit, in the order of the channels; a fixed range holds for the first unit."""
     by_unit: dict[str, list[str]] = {}
     for channel in panel.channels:

@@ -233,15 +233,11 @@ class _Facts:
         if off_mask_word(self.f, self.reader.zone):
             yield translate("side", "before it came off: {settings}").format(settings=self._settings())
         elif s.pressure_support_cmH2O is not None and s.ipap_cmH2O is not None:
-            yield translate("side", "pressure support {ps} cmH2O").format(
-                ps=trimmed(s.pressure_support_cmH2O)
-            )
+            yield translate("side", "pressure support {ps} cmH2O").format(ps=trimmed(s.pressure_support_cmH2O))
         if s.hours_on_mask is not None:
             text = translate("side", "{hours} on the mask").format(hours=hours(s.hours_on_mask))
             if s.hours_on_mask_last_24h is not None and s.hours_on_mask > s.hours_on_mask_last_24h + 0.05:
-                text += translate("side", ", {hours} in the last 24 h").format(
-                    hours=hours(s.hours_on_mask_last_24h)
-                )
+                text += translate("side", ", {hours} in the last 24 h").format(hours=hours(s.hours_on_mask_last_24h))
             yield text
 
     # flags
@@ -249,9 +245,7 @@ class _Facts:
     def _flags(self) -> Iterator[Fact]:
         for flag in open_flags(self.f):
             under = [
-                g
-                for g in self.f.flags
-                if g.group == flag.group and g is not flag and g.state in ("raised", "seen")
+                g for g in self.f.flags if g.group == flag.group and g is not flag and g.state in ("raised", "seen")
             ]
             folded = [
                 f"{marker_name(g.marker, self.reader)} ({tier_word(Tier(g.tier))}). {self._evidence(g)}"
@@ -278,9 +272,7 @@ class _Facts:
 
     def _with_others(self, explanation: Explanation, under: Sequence[FlagFigure]) -> Explanation:
         """The strongest flag of a kind explains those that stand under it too."""
-        others = (
-            f"{marker_name(g.marker, self.reader)}. {self._evidence(g)} {self._source(g)}" for g in under
-        )
+        others = (f"{marker_name(g.marker, self.reader)}. {self._evidence(g)} {self._source(g)}" for g in under)
         return replace(explanation, notes=(*explanation.notes, *others))
 
     def _evidence(self, flag: FlagFigure) -> str:
@@ -316,14 +308,11 @@ class _Facts:
     def _levers(self) -> Iterator[Fact]:
         for lever in (x for x in self.f.levers if x.can_act):
             lines = [sentence(m, self.reader) for m in (*lever.why, *lever.limits)]
-            yield Fact(
-                self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever)
-            )
+            yield Fact(self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever))
         idle = [x for x in self.f.levers if not x.can_act]
         if idle:
             folded = [
-                f"{lever_name(x.key, self.reader)}: {' '.join(sentence(m, self.reader) for m in x.why)}"
-                for x in idle
+                f"{lever_name(x.key, self.reader)}: {' '.join(sentence(m, self.reader) for m in x.why)}" for x in idle
             ]
             word = translate("side", "Enter tells why")
             yield Fact(

@@ -47,9 +47,7 @@ def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
         now=now if start <= now <= end else None,
         now_word=translate("stack", "now") if on.live else translate("stack", "then"),
         window=(max(start, end - 24 * HOUR), end) if end - start > LONG else None,
-        reduced_word=translate(
-            "stack", "Lowest and highest value of each pixel are drawn. Zoom in for each value."
-        ),
+        reduced_word=translate("stack", "Lowest and highest value of each pixel are drawn. Zoom in for each value."),
         name=translate("stack", "Panels of {label} on one clock").format(label=on.figures.label),
         summary=summary_of(on),
     )
@@ -121,9 +119,7 @@ def _areas(on: EpisodeOnScreen, panel: Panel) -> Iterator[Area]:
 
 def _brackets(on: EpisodeOnScreen) -> Iterator[Bracket]:
     for r in on.figures.responses:
-        still_open = (
-            r.headline == "not yet known" and r.superseded_at is None and r.window_to > on.course.until
-        )
+        still_open = r.headline == "not yet known" and r.superseded_at is None and r.window_to > on.course.until
         if r.superseded_at is not None and r.superseded_at <= r.window_from:
             continue  # its window never opened: a later change took its place
         end = r.window_to if r.superseded_at is None else min(r.window_to, r.superseded_at)
@@ -165,9 +161,7 @@ def _ribbon(on: EpisodeOnScreen) -> RibbonSpec:
                 s,
             )
         )
-    breaks = tuple(
-        Span(b.start, b.end or on.course.until, translate("stack", "off")) for b in on.course.breaks
-    )
+    breaks = tuple(Span(b.start, b.end or on.course.until, translate("stack", "off")) for b in on.course.breaks)
     ticks = tuple(Tick(s.start, change_word(s), s.doubtful, s) for s in on.course.stretches[1:])
     top = max((s.ipap or s.epap or 0.0 for s in steps), default=0.0)
     return RibbonSpec(

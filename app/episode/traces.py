@@ -133,9 +133,7 @@ class TraceMaker:
     def _gas_values(self, channel: str, ink: int) -> Iterator[Trace]:
         series = self.record.number(channel).until(self.course.until)
         venous = {g.at for g in self.figures.gases if g.site == "venous"}
-        is_venous = (
-            np.isin(series.t, np.array(sorted(venous), np.int64)) if venous else np.zeros(len(series), bool)
-        )
+        is_venous = np.isin(series.t, np.array(sorted(venous), np.int64)) if venous else np.zeros(len(series), bool)
         usual, other = series.cut(~is_venous), series.cut(is_venous)
         if len(usual):
             yield self._trace(
@@ -165,9 +163,7 @@ class TraceMaker:
     def _setting(self, channel: str, ink: int) -> Iterator[Trace]:
         steps = self.course.in_force.steps(channel) if channel != "rise" else None
         if steps is not None and steps.t.size:
-            yield self._trace(
-                channel, channel, trace_name(channel), *self._held(steps.t, steps.v), Drawn.STEPS, ink
-            )
+            yield self._trace(channel, channel, trace_name(channel), *self._held(steps.t, steps.v), Drawn.STEPS, ink)
 
     def _support(self, ink: int) -> Iterator[Trace]:
         stretches = self.course.stretches
@@ -222,8 +218,7 @@ def runs_above(t: np.ndarray, v: np.ndarray, limit: float) -> list[tuple[Instant
     edges = np.flatnonzero(over[1:] != over[:-1])
     ends = np.append(t[1:], t[-1] + MINUTE)
     return [
-        (int(t[a]), int(min(ends[b - 1], t[b - 1] + LEAST_GAP)))
-        for a, b in zip(edges[::2], edges[1::2], strict=True)
+        (int(t[a]), int(min(ends[b - 1], t[b - 1] + LEAST_GAP))) for a, b in zip(edges[::2], edges[1::2], strict=True)
     ]
 
 

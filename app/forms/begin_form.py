@@ -71,9 +71,7 @@ class BeginForm(PreviewedForm):
             field.setPlaceholderText(holds[key])
             field.textEdited.connect(self.edited)
             self._add(card, key, names.get(key, channel_name(key)), field, width=210)
-        self.sex = AnswerRow(
-            channel_name("sex"), [(c, self.tr(c)) for c in CHANNELS["sex"].choices], self.theme
-        )
+        self.sex = AnswerRow(channel_name("sex"), [(c, self.tr(c)) for c in CHANNELS["sex"].choices], self.theme)
         self.sex.chosen.connect(self.edited)
         for key, start in _NUMBERS.items():
             self._add_number(card, key, start)
@@ -103,9 +101,7 @@ class BeginForm(PreviewedForm):
             self._add(card, key, channel_name(key), field, width=210)
 
     def _build_gas(self) -> None:
-        card = self.card(
-            self.tr("Baseline gas"), self.tr("The last gas before support, or before logging began.")
-        )
+        card = self.card(self.tr("Baseline gas"), self.tr("The last gas before support, or before logging began."))
         self.gas = GasValues(self.gas_unit, self.theme, flat=True)
         self.gas.edited.connect(self.edited)
         self.gas_time = QLineEdit()
@@ -154,11 +150,7 @@ class BeginForm(PreviewedForm):
         }  # fmt: skip
         found |= {key: self._iso(self.words[key].text()) for key in _TIMES}
         started = self.running.started()
-        return {
-            k: v
-            for k, v in (found | self.readiness.answers() | {"started_at": self._iso(started)}).items()
-            if v
-        }
+        return {k: v for k, v in (found | self.readiness.answers() | {"started_at": self._iso(started)}).items() if v}
 
     def _number(self, key: str) -> str:
         text = self.numbers[key].text
@@ -225,9 +217,7 @@ class BeginForm(PreviewedForm):
         against = self.readiness.against(RELATIVE)
         relative = Message("form.relative", {"items": ", ".join(against)})
         effects = sentence(relative, self.reader()) if against else ""
-        head = self.tr("{label}, from now ({time})").format(
-            label=self.words["label"].text(), time=clock(now, zone)
-        )
+        head = self.tr("{label}, from now ({time})").format(label=self.words["label"].text(), time=clock(now, zone))
         return head, "; ".join(parts), effects
 
     def _is_answer(self, key: str) -> bool:
@@ -238,9 +228,7 @@ class BeginForm(PreviewedForm):
         oxygen = self.model.session.policy.oxygen
         risk = self.indication.currentData() in HYPERCAPNIC_RISK
         low, high = (
-            (oxygen.risk_target_low, oxygen.risk_target_high)
-            if risk
-            else (oxygen.target_low, oxygen.target_high)
+            (oxygen.risk_target_low, oxygen.risk_target_high) if risk else (oxygen.target_low, oxygen.target_high)
         )
         for key, limit in (("target_spo2_low", low), ("target_spo2_high", high)):
             self.numbers[key].box.starts_at = limit.value
@@ -250,9 +238,7 @@ class BeginForm(PreviewedForm):
         self.cells["indication"].tell(f"{kind}; {source}" if self.indication.currentData() else kind)
         self.cells["ceiling_of_care"].tell(self.tr("How far support goes. Apart from resuscitation."))
         self.cells["resuscitation"].tell(self.tr("What is done if the heart stops."))
-        values = {
-            r.channel.key: r for _, readings in (self.preview.read if self.preview else ()) for r in readings
-        }
+        values = {r.channel.key: r for _, readings in (self.preview.read if self.preview else ()) for r in readings}
         self.readiness.tell_measured(values)
 
 

@@ -22,9 +22,7 @@ class QuietChooser(Chooser):
 class Cell(QWidget):
     """A name, the field, and a quiet note under it."""
 
-    def __init__(
-        self, name: str, field: QWidget, theme: Theme, *, width: int = WIDTH, noted: bool = True
-    ) -> None:
+    def __init__(self, name: str, field: QWidget, theme: Theme, *, width: int = WIDTH, noted: bool = True) -> None:
         super().__init__()
         self.field, self.name, self.note = field, QLabel(name), QLabel()
         self.name.setProperty("role", "strong")

@@ -74,9 +74,7 @@ class EntryForm(PreviewedForm):
         return LineRequest(self.patient.record.key, line, self.model.session.zone) if line else None
 
     def ask_preview(self, request: LineRequest) -> None:
-        self.model.ask(
-            entry.preview, request, done=self.previewed, failed=self.refused, subject="form preview"
-        )
+        self.model.ask(entry.preview, request, done=self.previewed, failed=self.refused, subject="form preview")
 
     def ask_record(self, request: LineRequest, *, confirmed: bool) -> None:
         request = replace(request, confirmed=confirmed)

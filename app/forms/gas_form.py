@@ -41,11 +41,7 @@ class GasForm(EntryForm):
     def show_extra(self) -> None:
         """Calculated bicarbonate, whether the reported one belongs to it, and what usually explains it if not."""
         setting = self.in_force().fio2
-        told = (
-            self.tr("set: not known")
-            if isnan(setting)
-            else self.tr("set {value}").format(value=fraction(setting))
-        )
+        told = self.tr("set: not known") if isnan(setting) else self.tr("set {value}").format(value=fraction(setting))
         self.gas.cells["gas_fio2"].tell(told)
         if self.preview is None:
             self.check.setText(self._waiting())

@@ -38,9 +38,7 @@ class StepField(QAbstractSpinBox):
         self.edited.emit()
 
     def stepEnabled(self) -> QAbstractSpinBox.StepEnabledFlag:
-        return (
-            QAbstractSpinBox.StepEnabledFlag.StepUpEnabled | QAbstractSpinBox.StepEnabledFlag.StepDownEnabled
-        )
+        return QAbstractSpinBox.StepEnabledFlag.StepUpEnabled | QAbstractSpinBox.StepEnabledFlag.StepDownEnabled
 
     def validate(self, text: str, at: int) -> tuple[QValidator.State, str, int]:
         return QValidator.State.Acceptable, text, at

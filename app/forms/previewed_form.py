@@ -178,9 +178,7 @@ class PreviewedForm(QDialog):
         """Take the size that is wanted at 100 %, as far as the screen has it; what does not fit scrolls."""
         parent = self.parentWidget()
         room = parent.window().size() if parent is not None else self.screen().availableGeometry().size()
-        self.resize(
-            min(self.theme.px(width), room.width() - 24), min(self.theme.px(height), room.height() - 24)
-        )
+        self.resize(min(self.theme.px(width), room.width() - 24), min(self.theme.px(height), room.height() - 24))
 
     def set_name(self, name: str) -> None:
         """What the form is for."""
@@ -227,9 +225,7 @@ class PreviewedForm(QDialog):
         """What the fields say cannot be recorded."""
         self._awaited, self._pressed_early, self.asking = False, False, False
         self.go.setEnabled(False)
-        self.say(
-            f"<b>{escape(self.tr('Not recorded.'))}</b> {escape(sentence(failure.message, self.reader()))}"
-        )
+        self.say(f"<b>{escape(self.tr('Not recorded.'))}</b> {escape(sentence(failure.message, self.reader()))}")
 
     def _html(self) -> str:
         quiet = self.theme.colours.ink_quiet

@@ -43,9 +43,7 @@ ITEMS: Final = (
     Item("cognitive_impairment", RELATIVE, "no", _BTS, "secondary"),
     Item("treated_first", READY, "yes", _BTS, "confirmed"),
     Item("chest_film", READY, "yes", "common practice, no source", "common practice"),
-    Item(
-        "monitoring", READY, "yes", "BTS Quality Standards 2018, BMJ Open Respir Res 5:e000283", "secondary"
-    ),
+    Item("monitoring", READY, "yes", "BTS Quality Standards 2018, BMJ Open Respir Res 5:e000283", "secondary"),
 )
 """The decision on escalation before support begins (the same standards, secondary) is asked by its own fields."""
 
@@ -77,6 +75,4 @@ def answered_against(answers: dict[str, str], kind: str) -> tuple[str, ...]:
     >>> answered_against({"facial_injury": "yes", "pneumothorax": "not known"}, ABSOLUTE)
     ('facial_injury',)
     """
-    return tuple(
-        i.channel for i in of_kind(kind) if answers.get(i.channel) == ("yes" if i.good == "no" else "no")
-    )
+    return tuple(i.channel for i in of_kind(kind) if answers.get(i.channel) == ("yes" if i.good == "no" else "no"))

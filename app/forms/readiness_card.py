@@ -60,9 +60,7 @@ class ReadinessCard(Card):
             for n, m in enumerate(MEASURED, grid.rowCount()):
                 said = self.measured[m.channel] = QLabel(self.tr("answered by the value"))
                 said.setProperty("role", "caption")
-                below = self.tr("{name} below {limit}").format(
-                    name=channel_name(m.channel), limit=trimmed(m.below)
-                )
+                below = self.tr("{name} below {limit}").format(name=channel_name(m.channel), limit=trimmed(m.below))
                 grid.addWidget(self._worded(below, f"{m.source} ({_t(m.sure)})"), n, 0)
                 grid.addWidget(said, n, 2)
         self.add_line(inside)

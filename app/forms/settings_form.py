@@ -149,9 +149,7 @@ class SettingsForm(EntryForm):
             return ""
         pressures = ("ipap", "epap") if mode in BILEVEL_MODES else ("cpap",) if mode == "CPAP" else ()
         touched = self._differs("mode") or any(p in self._changes() for p in _PRESSURES)
-        missing = [
-            channel_name(p) for p in pressures if not self.fields[p].text and isnan(getattr(before, p))
-        ]
+        missing = [channel_name(p) for p in pressures if not self.fields[p].text and isnan(getattr(before, p))]
         if touched and missing:
             return self.tr("{mode} needs {missing}.").format(mode=mode, missing=", ".join(missing))
         return ""

@@ -87,9 +87,7 @@ class _Writer:
             f'<td width="{w}%" style="{quiet}">{escape(h)}</td>' for h, w in zip(heads, widths, strict=True)
         )
         cell = f'style="padding:{pad}px; border-top:1px solid {line}"'
-        body = "".join(
-            "<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows
-        )
+        body = "".join("<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows)
         return f'<table width="98%" cellspacing="0" style="border-collapse:collapse"><tr>{head}</tr>{body}</table>'
 
     def episode(self, page: EpisodePage) -> Iterator[str]:
@@ -100,10 +98,7 @@ class _Writer:
         yield self.text(page.settings)
         yield self.table(
             ("", ""),
-            (
-                (f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v))
-                for k, v in page.facts
-            ),
+            ((f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v)) for k, v in page.facts),
             (22, 78),
         )
         if page.flags:
@@ -120,8 +115,7 @@ class _Writer:
         yield self.text(translate("handover", "Jobs: {jobs}").format(jobs=page.jobs))
         yield self.text(
             translate("handover", "Remark: {remark}").format(
-                remark=page.remark
-                or translate("handover", "none yet. Type 'handover remark ...' on the log strip.")
+                remark=page.remark or translate("handover", "none yet. Type 'handover remark ...' on the log strip.")
             )
         )
         yield from (self.quiet(line) for line in page.to_check)
@@ -144,6 +138,4 @@ class _Writer:
             translate("handover", "What"),
             translate("handover", "What it did"),
         )
-        yield self.table(
-            heads, ((escape(x.at), escape(x.what), escape(x.response)) for x in lines), (15, 25, 60)
-        )
+        yield self.table(heads, ((escape(x.at), escape(x.what), escape(x.response)) for x in lines), (15, 25, 60))

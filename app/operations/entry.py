@@ -266,9 +266,7 @@ def _episode(store: Store, key: str, *, new: bool) -> Episode:
     return load(store, key)
 
 
-def _questions(
-    store: Store, episode: Episode, at: Instant, readings: Sequence[Reading]
-) -> tuple[Message, ...]:
+def _questions(store: Store, episode: Episode, at: Instant, readings: Sequence[Reading]) -> tuple[Message, ...]:
     asked = [doubt for r in readings for doubt in r.doubts]
     asked += second_values(readings, at, episode.standing)
     if any(r.channel.group is Group.GAS for r in readings):

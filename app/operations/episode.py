@@ -125,9 +125,7 @@ def _read(request: BeginRequest, key: str, now: Instant) -> tuple[tuple[Instant,
     moments = [(at, dict(request.facts) or {"label": key}), *((g.at, g.values) for g in request.given)]
     for moment, _ in moments:
         check_not_future(moment, now)
-    return tuple(
-        (moment, tuple(_typed(name, text) for name, text in values.items())) for moment, values in moments
-    )
+    return tuple((moment, tuple(_typed(name, text) for name, text in values.items())) for moment, values in moments)
 
 
 def _typed(name: str, text: str) -> Reading:

@@ -85,9 +85,7 @@ def _read(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
         from storage.intake.log_csv import read_log_csv
 
         if wanted.episode:
-            raise refuse(
-                "intake.episode_not_asked", value=wanted.episode, accepted="a log file without --episode"
-            )
+            raise refuse("intake.episode_not_asked", value=wanted.episode, accepted="a log file without --episode")
         return read_log_csv(wanted.path, now=now, existing=store, progress=report)
     if kind in (FileKind.LOG_CSV, FileKind.TABLE):
         return _read_table(store, now, wanted)
@@ -102,9 +100,7 @@ def _read_table(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
     from storage.intake.table_rows import Answers
 
     try:
-        table = open_table(
-            wanted.path, sheet=wanted.sheet, encoding=wanted.encoding, header_at=wanted.header_at
-        )
+        table = open_table(wanted.path, sheet=wanted.sheet, encoding=wanted.encoding, header_at=wanted.header_at)
     except UnreadableFileError as error:
         return unreadable_table(wanted.path, error)
     mapping = wanted.mapping

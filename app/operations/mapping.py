@@ -59,9 +59,7 @@ def look(store: Store, who: str, now: Instant, request: LookRequest) -> Outcome[
     from storage.intake.table import open_table
 
     try:
-        table = open_table(
-            request.path, sheet=request.sheet, encoding=request.encoding, header_at=request.header_at
-        )
+        table = open_table(request.path, sheet=request.sheet, encoding=request.encoding, header_at=request.header_at)
     except UnreadableFileError as error:
         raise RecordError(error.message) from error
     kept = kept_mappings(store)

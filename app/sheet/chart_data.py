@@ -85,9 +85,7 @@ class ShiftChart:
     changes: tuple[Instant, ...] = field(default=())
 
 
-def shift_chart(
-    record: Episode, figures: EpisodeFigures, start: Instant, end: Instant, reader: Reader
-) -> ShiftChart:
+def shift_chart(record: Episode, figures: EpisodeFigures, start: Instant, end: Instant, reader: Reader) -> ShiftChart:
     """The chart of a shift: one hour before it to its end."""
     cut = record.until(end)
     settings = SettingsInForce(cut)

@@ -218,5 +218,3 @@ def joined(line: Line) -> Iterator[Line]:
     cuts = np.flatnonzero(np.diff(t) > GAP) + 1
     for part_t, part_v in zip(np.split(t, cuts), np.split(v, cuts), strict=True):
         yield Line(part_t, part_v)
-
-

@@ -152,8 +152,7 @@ class _Writer:
             state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}, {_lowered(state)}", ""
         off = ", last gas drawn off support" if last.off_support else ""
         return (
-            f"{state}{off}: pH {self._lines.ph(last)}, "
-            f"PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
+            f"{state}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
         )
 
     def _change_of_state(self, s: ShiftFigures) -> str:

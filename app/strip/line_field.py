@@ -25,9 +25,7 @@ class LineField(QLineEdit):
             event.ignore()
             return False
         is_tab = (
-            event.type() == QEvent.Type.KeyPress
-            and isinstance(event, QKeyEvent)
-            and event.key() == Qt.Key.Key_Tab
+            event.type() == QEvent.Type.KeyPress and isinstance(event, QKeyEvent) and event.key() == Qt.Key.Key_Tab
         )
         if is_tab and completions(self.text(), self.cursorPosition()):
             self.completion_wanted.emit()

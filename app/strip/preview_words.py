@@ -46,9 +46,7 @@ def preview_words(preview: Preview, record: Episode | None, now: Instant, reader
     elif _has_support(line.support_before, line.support_after):
         effects.append(_support_words(line.support_before, line.support_after))
     return PreviewWords(
-        translate("strip", "{label}, {when}").format(
-            label=preview.label, when=_when(line.at, now, reader.zone)
-        ),
+        translate("strip", "{label}, {when}").format(label=preview.label, when=_when(line.at, now, reader.zone)),
         tuple(reading_words(r, reader) for r in line.readings),
         tuple(effects),
         tuple(sentence(m, reader) for m in preview.questions),
@@ -63,11 +61,7 @@ def reading_words(reading: Reading, reader: Reader) -> str:
     if reading.channel.kind is Kind.INSTANT:
         return f"{name} {reader.time(int(reading.number or 0))}"
     if isinstance(reading.value, str):
-        return (
-            f"{name}: {reading.value}"
-            if reading.channel.group is not Group.SETTING
-            else f"{name} {reading.value}"
-        )
+        return f"{name}: {reading.value}" if reading.channel.group is not Group.SETTING else f"{name} {reading.value}"
     if reading.channel.key in _GAS_PRESSURES and reading.raw_unit in ("mmHg", "kPa"):
         raw = reading.raw.replace(",", ".")
         other = "kPa" if reading.raw_unit == "mmHg" else "mmHg"
@@ -106,9 +100,9 @@ def _effects(record: Episode, at: Instant, readings: tuple[Reading, ...], reader
     after = with_readings(before, readings)
     told = effect_of_change(before, after, own_rate(record, at))
     words = [sentence(m, reader) for m in told]
-    if not any(
-        m.key.startswith("effect.pressure_support") or "support" in m.key for m in told
-    ) and _has_support(before.pressure_support, after.pressure_support):
+    if not any(m.key.startswith("effect.pressure_support") or "support" in m.key for m in told) and _has_support(
+        before.pressure_support, after.pressure_support
+    ):
         words.insert(0, _support_words(before.pressure_support, after.pressure_support))
     return words
 

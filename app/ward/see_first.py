@@ -25,9 +25,7 @@ class _Pennant(QWidget):
     def paintEvent(self, event: QPaintEvent) -> None:  # noqa: ARG002
         painter = QPainter(self)
         box = QRectF(self.rect())
-        pennant(
-            painter, self.theme, self.tier, box.left() + self.theme.px(3), box.bottom() - 2, box.height() - 4
-        )
+        pennant(painter, self.theme, self.tier, box.left() + self.theme.px(3), box.bottom() - 2, box.height() - 4)
         painter.end()
 
 
@@ -81,9 +79,7 @@ class SeeFirst(QFrame):
             self._open.setAccessibleName(self.tr("Open {label}").format(label=label))
         else:
             self._title.setText(inert(self.tr("Nobody stands out")))
-            self._why.setText(
-                inert(self.tr("No open flag and nothing overdue. This is no proof that all is well."))
-            )
+            self._why.setText(inert(self.tr("No open flag and nothing overdue. This is no proof that all is well.")))
         self.setAccessibleName(self.text())
 
     def text(self) -> str:

@@ -159,8 +159,7 @@ LEVERS: Final[dict[str, str]] = {
 }  # fmt: skip
 
 _CLASSES = (
-    "no_axis_adverse=no axis adverse;between=between no axis adverse and the worst corner;"
-    "worst_corner=worst corner"
+    "no_axis_adverse=no axis adverse;between=between no axis adverse and the worst corner;worst_corner=worst corner"
 )
 
 OTHER: Final[dict[str, str]] = {

@@ -246,9 +246,7 @@ def _effective_moments(
     return tuple(int(t) for t in logged[keep])
 
 
-def _states(
-    episode: Episode, settings: SettingsInForce, moments: tuple[Instant, ...]
-) -> tuple[Settings, ...]:
+def _states(episode: Episode, settings: SettingsInForce, moments: tuple[Instant, ...]) -> tuple[Settings, ...]:
     """The settings in force at each moment; one search per channel, since figures are due in milliseconds."""
     times = np.array(moments, np.int64)
     channels = ("ipap", "epap", "cpap", "fio2", "o2_flow", "rate_set", "ti")
@@ -256,9 +254,7 @@ def _states(
     modes, interfaces = (_words_on(episode, c, times) for c in ("mode", "interface"))
     return tuple(
         Settings(mode, ipap, epap, cpap, fio2, flow, rate, ti, interface)
-        for mode, (ipap, epap, cpap, fio2, flow, rate, ti), interface in zip(
-            modes, numbers, interfaces, strict=True
-        )
+        for mode, (ipap, epap, cpap, fio2, flow, rate, ti), interface in zip(modes, numbers, interfaces, strict=True)
     )
 
 

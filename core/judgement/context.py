@@ -77,9 +77,7 @@ class Context:
         low, high = self.episode.latest("target_spo2_low"), self.episode.latest("target_spo2_high")
         o = self.policy.oxygen
         low_by_risk, high_by_risk = (
-            (o.risk_target_low, o.risk_target_high)
-            if self.hypercapnic_risk
-            else (o.target_low, o.target_high)
+            (o.risk_target_low, o.risk_target_high) if self.hypercapnic_risk else (o.target_low, o.target_high)
         )
         return Target(
             low_by_risk.value if low is None else low,

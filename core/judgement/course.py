@@ -151,8 +151,6 @@ class _Quantity:
     beyond: float
 
 
-
-
 def _ph_variance(policy: Policy, _value: float) -> float:
     return float((ph_noise(policy.noise) / TWO_GASES) ** 2)
 

@@ -50,9 +50,7 @@ class Ventilation:
         return tuple(said)
 
 
-def delivered(
-    ctx: Context, start: Instant, end: Instant, off: tuple[Break, ...]
-) -> Ventilation | None:
+def delivered(ctx: Context, start: Instant, end: Instant, off: tuple[Break, ...]) -> Ventilation | None:
     """The alveolar ventilation delivered from `start` to `end`; None where the device gave no volumes.
 
     Minute volume where the device gives it, else rate x tidal volume; less dead space x rate. `off` are the breaks,

@@ -44,11 +44,7 @@ def gas_doubts(
         asks.append(Message("gas.inconsistent", values))
     asks += _kilopascals(readings)
     own, setting = value("gas_fio2"), in_force.fio2
-    if (
-        not isnan(own)
-        and not isnan(setting)
-        and abs(own - setting) > policy.oxygen.fio2_same_within.value + 1e-9
-    ):
+    if not isnan(own) and not isnan(setting) and abs(own - setting) > policy.oxygen.fio2_same_within.value + 1e-9:
         asks.append(Message("gas.fio2_differs", {"gas_fio2": own, "setting": setting}))
     fio2 = setting if isnan(own) else own
     gradient = float(oxygenation.aa_gradient(value("pao2"), paco2, fio2))

@@ -138,9 +138,7 @@ class _Run:
         return all_courses[:, 0], all_courses.min(axis=1), all_courses.max(axis=1)
 
 
-def _against(
-    figure: ExpectedCO2, gas: GasFigure, t: Times, middle: Values, low: Values, high: Values
-) -> ExpectedCO2:
+def _against(figure: ExpectedCO2, gas: GasFigure, t: Times, middle: Values, low: Values, high: Values) -> ExpectedCO2:
     """The newest gas against the course, with what commonly explains a gap beyond the band."""
     assert gas.paco2_mmHg is not None
     i = int(np.searchsorted(t, gas.at))

@@ -116,9 +116,7 @@ def _compensation(gas: GasFigure, closed: Message | None) -> dict[str, DerivedFi
         ),
         "ph_expected_acute": rule("ph_expected_acute", compensation.expected_ph_acute, paco2),
         "ph_expected_chronic": rule("ph_expected_chronic", compensation.expected_ph_chronic, paco2, _GAIN),
-        "usual_paco2_estimate_mmHg": rule(
-            "usual_paco2_estimate", compensation.usual_paco2_estimate, hco3, _GUESS
-        ),
+        "usual_paco2_estimate_mmHg": rule("usual_paco2_estimate", compensation.usual_paco2_estimate, hco3, _GUESS),
     }
 
 
@@ -158,9 +156,7 @@ def _shut(key: str, at: Instant | None, reason: Message) -> DerivedFigure:
     return DerivedFigure(key, None, at, reason=reason)
 
 
-def _classified(
-    gas: GasFigure, closed: Message | None
-) -> tuple[Disturbance, Message | None, tuple[Message, ...]]:
+def _classified(gas: GasFigure, closed: Message | None) -> tuple[Disturbance, Message | None, tuple[Message, ...]]:
     if closed is not None:
         return Disturbance.NOT_KNOWN, None, ()
     nan = float("nan")

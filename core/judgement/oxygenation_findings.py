@@ -85,9 +85,7 @@ def _mean_pressure(ctx: Context, at: Instant, walls: Walls) -> DerivedFigure:
         missing = Message("support.not_recorded", {"channel": "cpap"}) if isnan(now.low_pressure) else None
         return DerivedFigure(_MEAN, inputs["cpap"].value, at, inputs, reason=missing)
     if not now.is_bilevel or now.mode == "volume-assured":
-        return DerivedFigure(
-            _MEAN, None, at, reason=Message("oxygenation.no_fixed_pressure", {"mode": now.mode})
-        )
+        return DerivedFigure(_MEAN, None, at, reason=Message("oxygenation.no_fixed_pressure", {"mode": now.mode}))
     rate = rate_at(ctx, at, walls)
     inputs = {
         "ipap": FigureInput(_number(now.ipap), at), "epap": FigureInput(_number(now.epap), at),

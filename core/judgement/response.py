@@ -218,9 +218,7 @@ class _Judge:
             spo2_before, spo2_after, rr_before, rr_after, self.target.low, self.target.high, given_before, given_after
         )
 
-    def _before(
-        self, first_at: Instant, base: GasFigure | None
-    ) -> tuple[Found | None, Found | None, bool]:
+    def _before(self, first_at: Instant, base: GasFigure | None) -> tuple[Found | None, Found | None, bool]:
         """SpO2, rate and whether oxygen was given before an anchor: near the anchor, else near its baseline."""
         vitals = self.vitals
         before_at = first_at if base is None else max(first_at, base.at)
@@ -310,9 +308,7 @@ def _unjudged(base: Baseline, gas: GasFigure) -> tuple[Message, ...]:
     return ()
 
 
-def _cautions(
-    base: Baseline, gas: GasFigure, when: str, since: SinceStart, also: tuple[Step, ...]
-) -> list[Message]:
+def _cautions(base: Baseline, gas: GasFigure, when: str, since: SinceStart, also: tuple[Step, ...]) -> list[Message]:
     """What has to be said beside a verdict."""
     said = [base.why] if base.early and base.why else []
     if when == "early":

@@ -79,9 +79,7 @@ def difference(before: float | None, after: float | None) -> float | None:
     return None if before is None or after is None else round(after - before, 6)
 
 
-def gain_lost(
-    base: GasFigure | None, gas: GasFigure, earlier: Earlier, policy: Policy
-) -> Message | None:
+def gain_lost(base: GasFigure | None, gas: GasFigure, earlier: Earlier, policy: Policy) -> Message | None:
     """A relapse from the best gas since the start, beyond noise; None where there is none.
 
     The best gas is the one of the highest pH. It must be better than the start's baseline, where there is one:
@@ -95,9 +93,7 @@ def gain_lost(
     return _pf_lost(base, gas, [g for g in earlier.with_pf if g is not base], policy)
 
 
-def _pf_lost(
-    base: GasFigure | None, gas: GasFigure, earlier: list[GasFigure], policy: Policy
-) -> Message | None:
+def _pf_lost(base: GasFigure | None, gas: GasFigure, earlier: list[GasFigure], policy: Policy) -> Message | None:
     alike = [g for g in earlier if arms.pf_comparable(g, gas, policy) is None]
     if not alike or gas.pf_mmHg is None:
         return None

@@ -178,15 +178,11 @@ def news2_latest(ctx: Context, walls: Walls) -> ScoreFigure:
 def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
     """NEWS2 at a moment. Scale 2 only where a clinician recorded it."""
     fresh = ctx.policy.freshness
-    found = {
-        c: nearest(ctx.episode, c, at, fresh.vitals_min.value, walls) for c in ("spo2", "sbp", "hr", "temp")
-    }
+    found = {c: nearest(ctx.episode, c, at, fresh.vitals_min.value, walls) for c in ("spo2", "sbp", "hr", "temp")}
     found["rr"] = rate_at(ctx, at, walls)
     found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.gcs_min.value)
     now = ctx.settings.at(at)
-    oxygen = breathes_oxygen(
-        None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow
-    )
+    oxygen = breathes_oxygen(None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow)
     found["on_oxygen"] = Found("yes" if oxygen else "no", at) if oxygen is not None else NOTHING
     scale = 2 if ctx.episode.latest_text("spo2_scale") == "2" else 1
     score = news2(

@@ -108,8 +108,6 @@ def copd_failure(
     highest = _risk({name: len(AXES[name][2]) if step is None else step for name, step in steps.items()})
     risk = None if missing else lowest
     published = (90.0 if after_two_hours else 70.0) if risk is Risk.WORST_CORNER else None
-    reason = (
-        None if copd is True else Message("population.not_copd" if copd is False else "population.unknown")
-    )
+    reason = None if copd is True else Message("population.not_copd" if copd is False else "population.unknown")
     inside = "inside" if reason is None else "outside"
     return RiskClass(risk, lowest, highest, missing, steps, published, inside, reason)

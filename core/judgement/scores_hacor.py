@@ -91,14 +91,10 @@ def hacor(
     parts = {name: part(name, value, texts.get(name)) for name, value in given.items()}
     points, lowest, highest, missing = total(parts)
     population, reason = hypoxaemic_not_hypercapnic(pf=pf, ph=ph, paco2=paco2, on_mask=on_mask)
-    return Score(
-        "hacor", points, lowest, highest, missing, frozen(parts), population, reason, CERTAINTY, SOURCE
-    )
+    return Score("hacor", points, lowest, highest, missing, frozen(parts), population, reason, CERTAINTY, SOURCE)
 
 
-def hacor_points(
-    hr: ArrayLike, ph: ArrayLike, gcs: ArrayLike, pf: ArrayLike, rr: ArrayLike
-) -> NDArray[np.float64]:
+def hacor_points(hr: ArrayLike, ph: ArrayLike, gcs: ArrayLike, pf: ArrayLike, rr: ArrayLike) -> NDArray[np.float64]:
     """HACOR points for arrays that broadcast; NaN where any input is NaN.
 
     Rounded half-up within a billionth (`scores_binning.half_up_array`): for a value whose text decides an

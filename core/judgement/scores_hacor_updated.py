@@ -92,9 +92,7 @@ def hacor_updated(
     )  # fmt: skip
     if enabled:
         return made
-    return replace(
-        made, points=None, lowest=None, highest=None, parts=frozen({}), notes=(SWITCHED_OFF, FROM_MEMORY)
-    )
+    return replace(made, points=None, lowest=None, highest=None, parts=frozen({}), notes=(SWITCHED_OFF, FROM_MEMORY))
 
 
 def updated_band(points: float) -> Message:

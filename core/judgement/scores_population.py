@@ -25,9 +25,7 @@ def hypoxaemic_not_hypercapnic(
     'population.acute_hypercapnia'
     """
     if on_mask is not True:
-        return OUTSIDE, Message(
-            "population.not_on_mask" if on_mask is False else "population.support_unknown"
-        )
+        return OUTSIDE, Message("population.not_on_mask" if on_mask is False else "population.support_unknown")
     if pf is None or not isfinite(pf):
         return OUTSIDE, Message("population.input_unknown", {"input": "pf"})
     if pf > 300.0:

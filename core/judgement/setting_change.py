@@ -116,9 +116,7 @@ def rate_takes_effect(before: Settings, after: Settings, own_rate: float | None)
     return max(before.rate_set, after.rate_set) >= own_rate
 
 
-def effects(
-    steps: tuple[Step, ...], before: Settings, after: Settings, own_rate: float | None
-) -> tuple[str, ...]:
+def effects(steps: tuple[Step, ...], before: Settings, after: Settings, own_rate: float | None) -> tuple[str, ...]:
     """Which of CO2 and oxygen these steps can act on, in that order; empty where they do nothing.
 
     A rate whose effect is not known counts as acting: a doubt does not hide a change.

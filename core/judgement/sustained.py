@@ -21,9 +21,7 @@ class Spell:
     minutes: int
 
 
-def spells(
-    t: Times, v: Values, limit: float | Values, n: int, m: int, *, below: bool = False
-) -> tuple[Spell, ...]:
+def spells(t: Times, v: Values, limit: float | Values, n: int, m: int, *, below: bool = False) -> tuple[Spell, ...]:
     """The sustained crossings of `limit` (one number, or one per sample), shapes (k,).
 
     A spell begins once `n` of the last `m` minutes are past the limit, and is dated from the first of these; it

@@ -43,9 +43,7 @@ def ventilation_figure(ctx: Context, walls: Walls) -> VentilationFigure:
     """The ventilation figures of an episode; `walls` are the moments that no figure reaches across."""
     pbw = _predicted_weight(ctx)
     last_volume, last_minute = newest(ctx, "vte"), newest(ctx, "mv")
-    latest = _breathing(
-        ctx, max((t for t in (last_volume, last_minute) if t is not None), default=None), walls
-    )
+    latest = _breathing(ctx, max((t for t in (last_volume, last_minute) if t is not None), default=None), walls)
     now = latest if latest.volume is not None else _breathing(ctx, last_volume, walls)
     gas = _gas(ctx)
     then = _breathing(ctx, gas.at if gas is not None else None, walls)
@@ -56,9 +54,7 @@ def ventilation_figure(ctx: Context, walls: Walls) -> VentilationFigure:
     figure = VentilationFigure(
         predicted_body_weight_kg=pbw,
         tidal_volume_mL=_tidal_volume(now),
-        tidal_volume_mL_per_kg=_of_volume(
-            "vt_per_kg", ventilation.tidal_volume_per_kg, now, {"pbw": _given(pbw)}
-        ),
+        tidal_volume_mL_per_kg=_of_volume("vt_per_kg", ventilation.tidal_volume_per_kg, now, {"pbw": _given(pbw)}),
         minute_ventilation_L_per_min=minute,
         alveolar_ventilation_L_per_min=_alveolar(latest, minute, pbw),
         rapid_shallow_breathing_index=_of_volume(
@@ -71,9 +67,7 @@ def ventilation_figure(ctx: Context, walls: Walls) -> VentilationFigure:
     )
     usual = ctx.episode.number("usual_paco2")
     if not len(usual):
-        unwished = DerivedFigure(
-            "minute_ventilation_for_paco2", reason=Message("ventilation.no_wished_paco2")
-        )
+        unwished = DerivedFigure("minute_ventilation_for_paco2", reason=Message("ventilation.no_wished_paco2"))
         return replace(figure, minute_ventilation_for_usual_L_per_min=unwished)
     wish = FigureInput(float(usual.v[-1]), int(usual.t[-1]))
     return replace(figure, minute_ventilation_for_usual_L_per_min=needed_for(figure, wish))

@@ -22,9 +22,7 @@ if TYPE_CHECKING:
 SCRIPTS = Path(__file__).parent
 
 
-def bring_up_to_date(
-    path: Path, passphrase: str | None, backup_to: Path, scripts: Path = SCRIPTS
-) -> tuple[str, ...]:
+def bring_up_to_date(path: Path, passphrase: str | None, backup_to: Path, scripts: Path = SCRIPTS) -> tuple[str, ...]:
     """Back the store up, then run every migration it lacks; the revisions that were run.
 
     Raises:
@@ -109,9 +107,7 @@ def _say_format(connection: sa.Connection, reached: int, readable_from: int) -> 
 
 def _refresh_triggers(connection: sa.Connection) -> None:
     """Triggers are made anew from the schema in the same transaction, so that new tables have theirs."""
-    present = {
-        row[0] for row in connection.exec_driver_sql("SELECT name FROM sqlite_master WHERE type = 'trigger'")
-    }
+    present = {row[0] for row in connection.exec_driver_sql("SELECT name FROM sqlite_master WHERE type = 'trigger'")}
     for name in present & expected_triggers().keys():
         connection.exec_driver_sql(f"DROP TRIGGER {name}")
     create_triggers(connection)

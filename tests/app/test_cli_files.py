@@ -21,9 +21,7 @@ def run(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> Any:
     def runner(*arguments: str | Path) -> tuple[int, str, str]:
         capsys.readouterr()
         try:
-            code = main(
-                ["--store", str(tmp_path / "w.luffmark"), "--zone", "Europe/Oslo", *map(str, arguments)]
-            )
+            code = main(["--store", str(tmp_path / "w.luffmark"), "--zone", "Europe/Oslo", *map(str, arguments)])
         except SystemExit as ended:
             code = int(ended.code or 0)
         said = capsys.readouterr()

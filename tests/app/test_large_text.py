@@ -19,9 +19,7 @@ def test_no_button_is_cut(qtbot, tmp_path, scale, size):
             settled(qtbot, window)
             qtbot.wait(20)
             cut = [
-                b.text()
-                for b in window.findChildren(QAbstractButton)
-                if b.isVisible() and b.text() and _is_cut(b)
+                b.text() for b in window.findChildren(QAbstractButton) if b.isVisible() and b.text() and _is_cut(b)
             ]
             assert cut == []
         assert window.top.isVisible()

@@ -105,9 +105,9 @@ def test_the_last_panel_stays_and_a_dozen_is_enough():
     assert key_of(error) == "panel.too_many"
 
 
-names = st.text(
-    st.characters(codec="utf-8", exclude_categories=("Cs", "Cc")), min_size=1, max_size=20
-).filter(str.strip)
+names = st.text(st.characters(codec="utf-8", exclude_categories=("Cs", "Cc")), min_size=1, max_size=20).filter(
+    str.strip
+)
 panels = st.builds(
     Panel,
     key=st.uuids().map(str),

@@ -22,9 +22,7 @@ def test_every_screen_is_drawn(qapp, tmp_path, monkeypatch):
         image = QImage(str(path))
         assert image.width() >= 300
         colours = {
-            image.pixelColor(x, y).rgb()
-            for x in range(0, image.width(), 7)
-            for y in range(0, image.height(), 7)
+            image.pixelColor(x, y).rgb() for x in range(0, image.width(), 7) for y in range(0, image.height(), 7)
         }
         assert len(colours) > 4, path.name
     ward = QImage(str(tmp_path / "pictures" / "ward-light-1280x800.png"))

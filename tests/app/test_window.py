@@ -44,7 +44,7 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
     lanes = window.pages.ward.lanes
     qtbot.keyClick(lanes, Key.Key_Slash)
     assert window.strip.line.hasFocus()
-    before, due_before = settings_in(window), lane(window).due_word
+    before, support_before = settings_in(window), lane(window).support
     type_line(qtbot, window, "22/6 35")
     said = window.strip.plain()
     assert "Bed 7" in said
@@ -53,7 +53,7 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
     qtbot.keyClick(window.strip.line, Key.Key_Return)
     until(qtbot, lambda: len(settings_in(window)) > len(before))
     assert "IPAP 18 to 22 cmH2O" in settings_in(window)[-1]
-    assert lane(window).due_word != due_before
+    assert lane(window).support != support_before
     told = window.strip.plain()
     assert "Recorded for Bed 7, now (05:30): IPAP 22 cmH2O, EPAP 6 cmH2O, FiO2 35 %." in told
     assert "Ctrl+Z undoes it." in told
@@ -67,6 +67,16 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
     until(qtbot, lambda: window.pages.episode.stack.spec.ribbon.steps[-1].ipap == 18)
     assert settings_in(window) == before
     assert "Undone" in window.strip.plain()
+
+
+def test_a_gas_sent_by_one_key_changes_the_due_item(qtbot, window):
+    due_before = lane(window).due_word
+    assert "overdue" in due_before
+    qtbot.keyClick(window.pages.ward.lanes, Key.Key_F6)
+    settled(qtbot, window)
+    qtbot.keyClick(window.strip.line, Key.Key_Return)
+    until(qtbot, lambda: lane(window).due_word != due_before)
+    assert "overdue" not in lane(window).due_word or "gas" not in lane(window).due_word.casefold()
 
 
 def test_four_keys_beside_the_digits_log_a_change(qtbot, window):
@@ -312,9 +322,7 @@ def _spoken(widget):
     owner = widget.parent()
     viewport = isinstance(owner, QAbstractScrollArea) and owner.viewport() is widget
     inner = (
-        widget.objectName().startswith("qt_")
-        or isinstance(widget, QLabel)
-        or (viewport and owner.accessibleName())
+        widget.objectName().startswith("qt_") or isinstance(widget, QLabel) or (viewport and owner.accessibleName())
     )
     return inner or widget.accessibleName() or (isinstance(widget, QAbstractButton) and widget.text())
 

@@ -115,9 +115,7 @@ def test_no_lung_gives_blood_more_oxygen_than_it_holds(rows: list[dict[str, str]
     checked = 0
     typed = [r for r in rows if r["file"] == "notes.csv"]
     gases = {
-        (r["episode"], r["at"]): float(r["value"])
-        for r in typed
-        if r["channel"] == "pao2" and r["unit"] != "kPa"
+        (r["episode"], r["at"]): float(r["value"]) for r in typed if r["channel"] == "pao2" and r["unit"] != "kPa"
     }
     for row in sorted(typed, key=lambda r: r["at"]):
         if row["channel"] in ("fio2", "o2_flow"):
@@ -135,15 +133,11 @@ def test_ipap_is_above_epap_whenever_both_are_set(rows: list[dict[str, str]]) ->
     typed = [r for r in rows if r["channel"] in ("ipap", "epap")]
     moments = sorted({(r["at"], r["episode"]) for r in typed})
     for at, episode in moments:
-        now[episode] |= {
-            r["channel"]: float(r["value"]) for r in typed if (r["at"], r["episode"]) == (at, episode)
-        }
+        now[episode] |= {r["channel"]: float(r["value"]) for r in typed if (r["at"], r["episode"]) == (at, episode)}
         assert now[episode]["ipap"] > now[episode]["epap"]
 
 
-def test_the_night_tells_its_twelve_stories(
-    rows: list[dict[str, str]], truth: dict[str, dict[str, object]]
-) -> None:
+def test_the_night_tells_its_twelve_stories(rows: list[dict[str, str]], truth: dict[str, dict[str, object]]) -> None:
     assert len({t["kind"] for t in truth.values()}) == 12
     by_kind = {t["kind"]: t for t in truth.values()}
     assert [k for k, t in by_kind.items() if t["failed"]] == ["non_responder", "hypoxaemic_failure"]

@@ -24,9 +24,7 @@ def course(script: Script, seed: int = 3, **changes: float) -> Trajectory:
     return Trajectory(**{f.name: getattr(whole, f.name)[:, 0] for f in fields(Trajectory)})
 
 
-def supported(
-    ipap: float = 18, epap: float = 5, fio2: float = 0.28, leak: float = 10, rate: float = 14
-) -> Script:
+def supported(ipap: float = 18, epap: float = 5, fio2: float = 0.28, leak: float = 10, rate: float = 14) -> Script:
     return opened(300, "KT", before={"fio2": 0.28}, start=bilevel(ipap, epap, fio2, rate=rate), fit_leak=leak)
 
 

@@ -38,9 +38,7 @@ def test_a_kind_is_not_a_truth(cohorts: dict[str, list[SimulatedEpisode]]) -> No
 
 def test_late_answers_come_later(cohorts: dict[str, list[SimulatedEpisode]]) -> None:
     def median(kind: str) -> float:
-        return float(
-            np.median([e.truth.responded_at for e in cohorts[kind] if e.truth.responded_at is not None])
-        )
+        return float(np.median([e.truth.responded_at for e in cohorts[kind] if e.truth.responded_at is not None]))
 
     assert median("prompt_responder") < 30 < 60 < median("slow_responder")
     assert median("obesity_hypoventilation") > 90

@@ -88,7 +88,8 @@ def lead(outcomes: Sequence[Outcome], name: str) -> str:
 
 
 HEADS = (
-    "kind", "n", "asked", "answered", "sens", "spec", "failed", "warned", "quiet", "lead", "flagged", "unflagged", "lead",
+    "kind", "n", "asked", "answered", "sens", "spec", "failed", "warned", "quiet", "lead",
+    "flagged", "unflagged", "lead",
 )  # fmt: skip
 
 

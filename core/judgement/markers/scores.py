@@ -69,9 +69,7 @@ def hacor_updated_above_10_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell
     return from_points(points)
 
 
-def _score_spells(
-    seen: Observed, rule: MarkerRule, timely: Callable[[list[float]], bool]
-) -> list[Spell]:
+def _score_spells(seen: Observed, rule: MarkerRule, timely: Callable[[list[float]], bool]) -> list[Spell]:
     limit = rule.limits["points"]
     points = []
     for gas, score, minutes in _hacor(seen):

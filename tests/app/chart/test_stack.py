@@ -122,7 +122,7 @@ def test_the_window_stays_inside_the_episode(stack):
     low = stack.window[0]
     stack.set_window(at(0), at(0) + 1)
     assert stack.window[1] - stack.window[0] == LEAST_SPAN
-    stack.set_window(at(-10**6), at(10**6))
+    stack.set_window(at(-(10**6)), at(10**6))
     assert stack.window[0] == low
     assert stack.window[1] - stack.window[0] < 1.1 * (at(480) - START)
 

@@ -13,9 +13,7 @@ from tests.support.invented_ward import NOW, at, ended, failing, leaking, on_cpa
 
 def shown(bed, panels=None, gas_unit="mmHg"):
     panels = panels or shipped("usual", shipped_titles())
-    return EpisodeOnScreen(
-        bed.record, bed.figures, course_of(bed.record, NOW), shipped_policy(), panels, gas_unit
-    )
+    return EpisodeOnScreen(bed.record, bed.figures, course_of(bed.record, NOW), shipped_policy(), panels, gas_unit)
 
 
 def test_ribbon_panels_brackets_and_events():

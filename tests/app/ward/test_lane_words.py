@@ -28,9 +28,7 @@ WORDS = LaneWords(Reader(ZONE, "mmHg"), NOW)
 
 
 def lane_of(bed, **values):
-    return WORDS.lane(
-        OnWard(bed.figures, course_of(bed.record, NOW)), first=values.pop("first", False), **values
-    )
+    return WORDS.lane(OnWard(bed.figures, course_of(bed.record, NOW)), first=values.pop("first", False), **values)
 
 
 def items(lane, kind):

@@ -72,8 +72,7 @@ def test_a_gas_due_is_told_before_care_that_is_later_overdue():
 def test_nobody_is_seen_first_where_all_is_quiet():
     quiet = EpisodeFigures("E", 0, concern=Concern(5))
     assert (
-        first_to_see([quiet, EpisodeFigures("F", 0, support=SupportFigure(ended_at=1), concern=Concern(6))])
-        is None
+        first_to_see([quiet, EpisodeFigures("F", 0, support=SupportFigure(ended_at=1), concern=Concern(6))]) is None
     )
     assert first_to_see(FIGURES).label == "Bed 7"
 
