@@ -152,5 +152,6 @@ def test_no_label_no_free_text_and_no_name_is_in_the_file(tmp_path: Path, typed)
         write_deidentified(store, folder / "d.csv", ALL)
     text = (folder / "d.csv").read_text("utf-8")
     cells = {cell for row in csv.reader(text.splitlines()) for cell in row}
+    kept = [k for k in kept if k not in _FIXED]  # a word of the format itself tells nothing of a patient
     assert not [k for k in kept if k in cells]
     assert not [k for k in kept if k in text and not any(k in fixed for fixed in _FIXED)]
