@@ -49,6 +49,12 @@ def _middles(v: Values, bins: Times, starts: Times, size: Times) -> Values:
         k = int(inner[0])
         rows = np.sort(v[starts[1] : starts[-1]].reshape(-1, k), axis=1)
         middle = (rows[:, (k - 1) // 2] + rows[:, k // 2]) / 2.0
-        return np.concatenate(([np.median(v[: starts[1]])], middle, [np.median(v[starts[-1] :])]))
+        return np.concatenate(([_middle(v[: starts[1]])], middle, [_middle(v[starts[-1] :])]))
     ordered = v[np.lexsort((v, bins))]
     return np.asarray((ordered[starts + (size - 1) // 2] + ordered[starts + size // 2]) / 2.0)
+
+
+def _middle(v: Values) -> float:
+    """The median of a few values: sorting them costs a third of numpy's general median."""
+    ordered = np.sort(v)
+    return float((ordered[(v.size - 1) // 2] + ordered[v.size // 2]) / 2.0)

@@ -59,7 +59,7 @@ def theil_sen(t: Values, y: Values, confidence: float = 0.95) -> SenLine:
         return NO_LINE
     slopes.sort()
     slope = _middle(slopes)
-    intercept = float(np.median(y)) - slope * float(np.median(t))
+    intercept = _middle(np.sort(y)) - slope * _middle(np.sort(t))
     low, high = _interval(slopes, t, y, confidence)
     return SenLine(slope, intercept, low, high)
 
