@@ -50,7 +50,7 @@ GAS: Final[dict[str, str]] = {
         "The value may have been mmHg already: as {mmHg:0} mmHg the values agree.",
     "consistency.standard_bicarbonate":
         "Bicarbonate {hco3:1} mmol/L may be the standard one; the actual one would be {calculated:1}.",
-    "consistency.transcription":
+    "consistency.copying_slip":
         "One of pH {ph:2}, PCO2 {paco2:gas}, bicarbonate {hco3:1} mmol/L may be misread.",
     "specimen.capillary_is_not_arterial": "capillary {channel:name} does not stand for arterial",
     "specimen.venous_is_not_arterial": "venous {channel:name} does not stand for arterial",

@@ -80,7 +80,7 @@ def _explanations(ph: float, paco2: float, hco3: float, tolerance: float) -> tup
     if bool(above_pressure_limit(paco2, 6.0)) and tolerance < short <= _STANDARD_LOWER_BY:
         found.append(Message("consistency.standard_bicarbonate", {"hco3": hco3, "calculated": hco3 + short}))
     found.extend(_swapped(ph, paco2, hco3, agrees))
-    found.append(Message("consistency.transcription", {"ph": ph, "paco2": paco2, "hco3": hco3}))
+    found.append(Message("consistency.copying_slip", {"ph": ph, "paco2": paco2, "hco3": hco3}))
     return tuple(found)
 
 

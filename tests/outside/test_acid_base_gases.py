@@ -203,7 +203,7 @@ INCONSISTENT = {
     "TORMJ11-OHS-PRE": "consistency.standard_bicarbonate",
     "NIVFAIL-START": "consistency.standard_bicarbonate",
     "NIVFAIL-IMV": "consistency.standard_bicarbonate",
-    "NEG-HCO3": "consistency.transcription",
+    "NEG-HCO3": "consistency.copying_slip",
     "NEG-UNIT": "consistency.kpa_taken_for_mmhg",
 }
 

@@ -48,7 +48,7 @@ def test_a_gas_is_read_in_words_with_its_explanations():
     assert arterial["reading"]["classification"]["text"] == "Acute-on-chronic respiratory acidosis."
     assert len(arterial["reading"]["steps"]) == 3
     assert arterial["reading"]["hco3_expected_chronic_mmol_L"]["value"] == 38.0
-    assert arterial["explanations"][-1]["key"] == "consistency.transcription"
+    assert arterial["explanations"][-1]["key"] == "consistency.copying_slip"
     assert any("70 %" in w["text"] for w in arterial["warnings"])
     assert "rules out arterial hypercapnia unless in shock" in venous["rule_out"]["text"]
     assert venous["reading"]["classification"] is None

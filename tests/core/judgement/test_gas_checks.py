@@ -38,7 +38,7 @@ def test_the_likeliest_explanation_comes_first_and_a_misreading_always_last(gas,
     figure = the_gas(f"02:00 {gas}")
     assert figure.consistent is False
     assert keys(figure.explanations)[0] == likeliest
-    assert keys(figure.explanations)[-1] == "consistency.transcription"
+    assert keys(figure.explanations)[-1] == "consistency.copying_slip"
 
 
 @pytest.mark.parametrize(("sao2", "doubted"), [("88", False), ("84", False), ("83", True), ("94", True)])

@@ -23,7 +23,7 @@ def test_beyond_it_always_has_an_explanation(ph: float, paco2: float, off: float
     if 1.0 <= hco3 <= 80.0:
         found = bicarbonate_agreement(ph, paco2, hco3)
         assert found.consistent is False
-        assert found.explanations[-1].key == "consistency.transcription"
+        assert found.explanations[-1].key == "consistency.copying_slip"
         assert all(e.key != "consistency.standard_bicarbonate" for e in found.explanations)
 
 
