@@ -138,7 +138,7 @@ def _rox_hr(ctx: Context, walls: Walls) -> DerivedFigure:
     if ctx.rox.latest is None or at is None:
         reason = ctx.rox.reasons.get("latest", Message("trend.no_values"))
         return DerivedFigure("rox_hr", caveats=_HIGH_FLOW, reason=reason)
-    heart = nearest(ctx.episode, "hr", at, ctx.policy.freshness.vitals_min.value, walls)
+    heart = nearest(ctx.episode, "hr", at, ctx.policy.freshness.of("hr"), walls)
     inputs = {**ctx.rox.inputs, "hr": FigureInput(heart.value, heart.at)}
     return derive("rox_hr", rox.rox_hr, inputs, at, caveats=_HIGH_FLOW)
 

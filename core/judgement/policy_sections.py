@@ -81,11 +81,27 @@ class OxygenRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=Tru
 
 
 class Freshness(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
-    """How old an input of a score may be, in minutes from the score's moment."""
+    """How far an input may lie from the moment it is used for, in minutes.
+
+    Each input of a score has its own; `vitals_min` is for vitals that verdicts and markers set beside a gas.
+    """
 
     vitals_min: Limit
+    hr_min: Limit
+    rr_min: Limit
+    spo2_min: Limit
+    sbp_min: Limit
+    temp_min: Limit
     gcs_min: Limit
-    gas_min: Limit
+    acvpu_min: Limit
+
+    def of(self, channel: str) -> float:
+        """The minutes allowed for one input of a score; KeyError for a channel that no score takes."""
+        limits = {
+            "hr": self.hr_min, "rr": self.rr_min, "spo2": self.spo2_min, "sbp": self.sbp_min,
+            "temp": self.temp_min, "gcs": self.gcs_min, "acvpu": self.acvpu_min,
+        }  # fmt: skip
+        return limits[channel].value
 
 
 class TrendRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):

@@ -117,7 +117,7 @@ def nearest_word(episode: Episode, channel: str, at: Instant, within_min: float)
 
 def rate_at(ctx: Context, at: Instant, walls: Walls) -> Found:
     """The respiratory rate: a counted one beats the machine's."""
-    within = ctx.policy.freshness.vitals_min.value
+    within = ctx.policy.freshness.of("rr")
     counted = nearest(ctx.episode, "rr", at, within, walls)
     return counted if counted.value is not None else nearest(ctx.episode, "rr_total", at, within, walls)
 
@@ -126,9 +126,9 @@ def gas_inputs(ctx: Context, gas: GasFigure, walls: Walls) -> dict[str, Found]:
     """The five inputs of HACOR at a gas."""
     fresh = ctx.policy.freshness
     return {
-        "hr": nearest(ctx.episode, "hr", gas.at, fresh.vitals_min.value, walls),
+        "hr": nearest(ctx.episode, "hr", gas.at, fresh.of("hr"), walls),
         "ph": Found(gas.ph, gas.at, gas.ph_text),
-        "gcs": nearest(ctx.episode, "gcs", gas.at, fresh.gcs_min.value, walls),
+        "gcs": nearest(ctx.episode, "gcs", gas.at, fresh.of("gcs"), walls),
         "pf": Found(gas.pf_mmHg, gas.at) if gas.pf_mmHg is not None else NOTHING,
         "rr": rate_at(ctx, gas.at, walls),
     }
@@ -178,9 +178,9 @@ def news2_latest(ctx: Context, walls: Walls) -> ScoreFigure:
 def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
     """NEWS2 at a moment. Scale 2 only where a clinician recorded it."""
     fresh = ctx.policy.freshness
-    found = {c: nearest(ctx.episode, c, at, fresh.vitals_min.value, walls) for c in ("spo2", "sbp", "hr", "temp")}
+    found = {c: nearest(ctx.episode, c, at, fresh.of(c), walls) for c in ("spo2", "sbp", "hr", "temp")}
     found["rr"] = rate_at(ctx, at, walls)
-    found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.gcs_min.value)
+    found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.of("acvpu"))
     now = ctx.settings.at(at)
     oxygen = breathes_oxygen(None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow)
     found["on_oxygen"] = Found("yes" if oxygen else "no", at) if oxygen is not None else NOTHING

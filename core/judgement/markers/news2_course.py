@@ -16,7 +16,6 @@ from core.judgement.markers.spells import Point, Spell, from_points
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.scores_binning import half_up_array
 from core.judgement.scores_news2 import ACVPU, BINS, SCALE_1, SCALE_2_ON_AIR, SCALE_2_ON_OXYGEN, Bins
-from core.record.episode import Series
 from core.record.instant import HOUR, MINUTE
 from core.record.message import Message, Value
 from core.record.samples import Times, Values
@@ -42,8 +41,8 @@ def news2_course(seen: Observed) -> Course:
     oxygen = _oxygen(seen, t)
     for name in ("rr", "hr", "sbp", "temp"):
         decimals, bins = BINS[name]
-        _add(low, high, _points(bins, _fresh(seen, spots[name], t), decimals), 0, max(p for _, p in bins))
-    spo2 = _fresh(seen, spots["spo2"], t)
+        _add(low, high, _points(bins, _fresh(seen, name, t), decimals), 0, max(p for _, p in bins))
+    spo2 = _fresh(seen, "spo2", t)
     if seen.episode.latest_text("spo2_scale") == "2":
         air, given = _points(SCALE_2_ON_AIR, spo2, 0), _points(SCALE_2_ON_OXYGEN, spo2, 0)
         low += np.where(np.isnan(spo2), 0, np.where(oxygen == 1, given, air))
@@ -62,12 +61,13 @@ def _add(low: Values, high: Values, points: Values, least: float, most: float) -
     high += np.where(missing, most, points)
 
 
-def _fresh(seen: Observed, spots: Series, t: Times) -> Values:
+def _fresh(seen: Observed, channel: str, t: Times) -> Values:
+    spots = seen.spots(channel)
     if not len(spots):
         return np.full(t.shape, np.nan)
     i = np.searchsorted(spots.t, t, side="right") - 1
     k = np.maximum(i, 0)
-    fresh = (i >= 0) & (t - spots.t[k] <= int(seen.policy.freshness.vitals_min.value * MINUTE))
+    fresh = (i >= 0) & (t - spots.t[k] <= int(seen.policy.freshness.of(channel) * MINUTE))
     return np.where(fresh, spots.v[k], np.nan)
 
 
@@ -90,7 +90,7 @@ def _consciousness(seen: Observed, t: Times) -> Values:
     points = np.array([np.nan, *(float(ACVPU.get(w, 0)) for w in words.v)])
     i = np.searchsorted(words.t, t, side="right")
     at = np.concatenate(([0], words.t))[i]
-    fresh = t - at <= int(seen.policy.freshness.gcs_min.value * MINUTE)
+    fresh = t - at <= int(seen.policy.freshness.of("acvpu") * MINUTE)
     return np.where((i > 0) & fresh, points[i], np.nan)
 
 

@@ -1,10 +1,12 @@
 """Scores take the nearest fresh value, never across a change or a break, and say what is missing."""
 
+import re
+
 import numpy as np
 import pytest
 
 from core.figures.episode_figures import gas_stage, record_stage
-from core.judgement.policy import shipped_policy
+from core.judgement.policy import read_policy, shipped_policy, shipped_text
 from core.judgement.score_inputs import barriers, hacor_at, nearest, nearest_word, news2_latest, rate_at
 from tests.support.log import device, episode, moment
 
@@ -112,3 +114,26 @@ def test_news2_counts_an_oxygen_flow_as_oxygen():
 def test_walls_are_anchors_and_the_edges_of_breaks():
     ctx = context("00:50 rr 20\n01:00 mode bpap-st ipap 14 epap 5\n02:00 mask off\n02:20 mask on")
     assert barriers((moment("01:00"),), ctx.support).tolist() == [moment(t) for t in ("01:00", "02:00", "02:20")]
+
+
+@pytest.mark.parametrize(
+    ("channel", "typed", "score"),
+    [("hr", "hr 128", "hacor"), ("rr", "rr 34", "hacor"), ("gcs", "gcs 14", "hacor"), ("sbp", "bp 118/70", "news2"),
+     ("temp", "temp 37.4", "news2"), ("acvpu", "acvpu alert", "news2"), ("spo2", "spo2 91", "news2")],
+)  # fmt: skip
+def test_each_input_has_a_freshness_of_its_own(channel, typed, score):
+    """Shortening one input's limit drops that input and no other."""
+    vitals = "01:40 hr 128 rr 34 gcs 14 spo2 91 bp 118/70 temp 37.4 acvpu alert\n".replace(typed, "")
+    log = f"01:00 mode bpap-st ipap 14 epap 6 fio2 50\n{vitals}"
+    log += f"01:30 {typed}\n02:00 ph 7.38 paco2 38 pao2 70 site arterial"
+    shorter, n = re.subn(
+        rf"^{channel}_min = {{ value = \d+", f"{channel}_min = {{ value = 5", shipped_text(), flags=re.M
+    )
+    assert n == 1
+
+    def missing(policy):
+        ctx = gas_stage(record_stage(episode(log), moment("02:00"), policy))
+        scored = hacor_at(ctx, ctx.gases[0], NO_WALLS) if score == "hacor" else news2_latest(ctx, NO_WALLS)
+        return set(scored.missing)
+
+    assert missing(read_policy(shorter)) - missing(shipped_policy()) == {channel}
