@@ -36,7 +36,7 @@ def of_ward(store: Store, who: str, now: Instant, request: StatisticsRequest) ->
         raise refuse("statistics.backwards", start=request.start, end=end)
     known_head = None if request.as_known_at is None else store.head_known_at(request.as_known_at)
     policy = in_force(store, known_head)
-    total = nothing(request.start, end)
+    total = nothing(request.start, end, policy)
     keys = store.episode_keys(known_head)
     for number, key in enumerate(keys):
         report(number, len(keys))

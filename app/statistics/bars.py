@@ -15,7 +15,7 @@ from app.phrases import translate
 from app.statistics.measures import clock_name, measures, ordered_flags
 from app.theme import Theme, Tier, Verdict, verdict_of, verdict_word
 from app.words import Reader
-from core.figures.ward_statistics import START_CLOCKS, Waits, WardStatistics
+from core.figures.ward_statistics import Waits, WardStatistics
 
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 _MOST_FLAGS = 12
@@ -155,7 +155,7 @@ class StatisticsBars(QWidget):
     def _draw_waits(self, painter: QPainter, y: float, width: int) -> float:
         assert self._found is not None
         px, found = self._theme.px, self._found
-        rows = [(clock_name(c.key), found.clocks[c.key]) for c in START_CLOCKS]
+        rows = [(clock_name(key), found.clocks[key]) for key in found.limits]
         rows.append((translate("statistics", "From the start to the first gas"), found.first_gas))
         row = px(38)
         note = translate("statistics", "line: limit")

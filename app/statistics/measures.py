@@ -12,7 +12,7 @@ from app.formats import fixed, minutes, trimmed, wall
 from app.phrases import translate
 from app.theme import Tier, tier_word, verdict_of, verdict_word
 from app.words import Reader
-from core.figures.ward_statistics import START_CLOCKS, FlagCount, Waits, WardStatistics
+from core.figures.ward_statistics import FlagCount, Waits, WardStatistics
 from core.record.local_time import zoned_iso
 from storage.apostrophe import guarded
 
@@ -80,13 +80,13 @@ def _episodes(s: WardStatistics) -> Iterator[Measure]:
 
 def _starts(s: WardStatistics) -> Iterator[Measure]:
     group = translate("statistics", "Time to start")
-    for clock in START_CLOCKS:
-        waits, name = s.clocks[clock.key], clock_name(clock.key)
+    for key, limit in s.limits.items():
+        waits, name = s.clocks[key], clock_name(key)
         yield Measure(group, translate("statistics", "{name}, median").format(name=name), waits.median, "min",
                       note=_beside(waits))  # fmt: skip
-        within = translate("statistics", "{name}, within {limit}").format(name=name, limit=minutes(clock.limit_min))
+        within = translate("statistics", "{name}, within {limit}").format(name=name, limit=minutes(limit.value))
         value = waits.within if waits.known else None
-        yield Measure(group, within, value, "", waits.known, "", f"{clock.source} ({clock.sure})")
+        yield Measure(group, within, value, "", waits.known, "", f"{limit.source} ({limit.sure})")
     first = s.first_gas
     yield Measure(group, translate("statistics", "From the start to the first gas, median"), first.median, "min",
                   note=_beside(first))  # fmt: skip
@@ -107,10 +107,12 @@ def _beside(waits: Waits) -> str:
 
 def _gases(s: WardStatistics) -> Iterator[Measure]:
     group, g, w = translate("statistics", "Gases"), s.gases, s.windows
+    low, high = (trimmed(m) for m in s.window_min)
+    inside = translate("statistics", "Taken inside a response window ({low} to {high} min)")
     rows = (
-        (translate("statistics", "Taken inside a response window (30 to 120 min)"), g.in_window),
-        (translate("statistics", "Early (under 30 min)"), g.early),
-        (translate("statistics", "Late (over 120 min)"), g.late),
+        (inside.format(low=low, high=high), g.in_window),
+        (translate("statistics", "Early (under {low} min)").format(low=low), g.early),
+        (translate("statistics", "Late (over {high} min)").format(high=high), g.late),
         (translate("statistics", "Not used for a verdict"), g.judges_none),
     )
     beside = translate("statistics", "arterial and capillary; venous beside them: {count}").format(count=g.venous)

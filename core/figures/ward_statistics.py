@@ -16,7 +16,7 @@ from typing import Final, TypeVar
 from core.figures.episode_figures import episode_figures
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
 from core.judgement.policy import Policy
-from core.judgement.policy_sections import Sure
+from core.judgement.policy_sections import Limit
 from core.judgement.shapes import EpisodeFigures, GasFigure, ResponseFigure
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant, minutes_between
@@ -26,24 +26,12 @@ from core.record.support import support_time
 T = TypeVar("T")
 
 
-@dataclass(frozen=True, slots=True)
-class Clock:
-    """A time to start, from a fact of the profile, with the limit it is audited by."""
-
-    key: str
-    channel: str
-    limit_min: float
-    source: str
-    sure: Sure
-
-
-_QUALITY: Final = "BTS Quality Standards for acute NIV 2018, BMJ Open Respir Res 5:e000283"
-START_CLOCKS: Final = (
-    Clock("gas_to_start", "deciding_gas_at", 60.0, _QUALITY, "from memory"),
-    Clock("decision_to_start", "decided_at", 60.0, _QUALITY, "secondary"),
-    Clock("arrival_to_start", "arrived_at", 120.0, _QUALITY, "from memory"),
-)
-"""The source is worded differently in different places, so all three are kept apart."""
+START_CLOCKS: Final[Mapping[str, str]] = {
+    "gas_to_start": "deciding_gas_at",
+    "decision_to_start": "decided_at",
+    "arrival_to_start": "arrived_at",
+}
+"""The clocks to the start of support, each with the fact of the profile it runs from. Their limits are the policy's."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -145,6 +133,10 @@ class WardStatistics:
 
     start: Instant
     end: Instant
+    limits: Mapping[str, Limit]
+    """Of the clocks, with source and how sure, by the policy they were counted under."""
+    window_min: tuple[float, float]
+    """The response window of that policy, in minutes after a change."""
     episodes: int = 0
     starts: int = 0
     ends: Mapping[str, int] = field(default_factory=dict)
@@ -159,7 +151,8 @@ class WardStatistics:
 
     def __add__(self, other: WardStatistics) -> WardStatistics:
         return WardStatistics(
-            self.start, self.end, self.episodes + other.episodes, self.starts + other.starts,
+            self.start, self.end, self.limits, self.window_min,
+            self.episodes + other.episodes, self.starts + other.starts,
             dict(Counter(self.ends) + Counter(other.ends)), _merged(self.clocks, other.clocks, Waits.__add__),
             self.first_gas + other.first_gas, self.gases + other.gases, self.windows + other.windows,
             self.hours_on_mask + other.hours_on_mask, self.hours_possible + other.hours_possible,
@@ -174,13 +167,13 @@ def ward_statistics(episodes: Iterable[Episode], start: Instant, end: Instant, p
     Raises:
         ValueError: the span does not end after it starts.
     """
-    total = nothing(start, end)
+    total = nothing(start, end, policy)
     for episode in episodes:
         total += episode_statistics(episode, start, end, policy)
     return total
 
 
-def nothing(start: Instant, end: Instant) -> WardStatistics:
+def nothing(start: Instant, end: Instant, policy: Policy) -> WardStatistics:
     """The figures of a span without episodes.
 
     Raises:
@@ -188,8 +181,22 @@ def nothing(start: Instant, end: Instant) -> WardStatistics:
     """
     if end <= start:
         raise ValueError(f"span from {start} to {end}: its end must lie after its start")
-    clocks = {c.key: Waits(limit_min=c.limit_min) for c in START_CLOCKS}
-    return WardStatistics(start, end, clocks=clocks)
+    limits = start_limits(policy)
+    window = policy.response.window_from_min.value, policy.response.window_to_min.value
+    clocks = {key: Waits(limit_min=limit.value) for key, limit in limits.items()}
+    return WardStatistics(start, end, limits, window, clocks=clocks)
+
+
+def start_limits(policy: Policy) -> dict[str, Limit]:
+    """The limit of each clock to the start of support, in minutes, with its source.
+
+    >>> from core.judgement.policy import shipped_policy
+    >>> {key: limit.value for key, limit in start_limits(shipped_policy()).items()}
+    {'gas_to_start': 60.0, 'decision_to_start': 60.0, 'arrival_to_start': 120.0}
+    """
+    c = policy.start_clocks
+    found = (c.gas_to_start_min, c.decision_to_start_min, c.arrival_to_start_min)
+    return dict(zip(START_CLOCKS, found, strict=True))
 
 
 def episode_statistics(episode: Episode, start: Instant, end: Instant, policy: Policy) -> WardStatistics:
@@ -198,7 +205,7 @@ def episode_statistics(episode: Episode, start: Instant, end: Instant, policy: P
     Raises:
         ValueError: the span does not end after it starts.
     """
-    none = nothing(start, end)
+    none = nothing(start, end, policy)
     cut = episode.until(end)
     support = support_time(cut, SettingsInForce(cut))
     if cut.first_at is None or (support.end is not None and support.end <= start):
@@ -210,8 +217,8 @@ def episode_statistics(episode: Episode, start: Instant, end: Instant, policy: P
     ended = support.end is not None and start < support.end <= end
     why = figures.support.end_reason or support.ended_by or "not recorded"
     return WardStatistics(
-        start, end, 1, int(began), {why: 1} if ended else {},
-        _clocks(figures, support.start) if began else dict(none.clocks),
+        start, end, none.limits, none.window_min, 1, int(began), {why: 1} if ended else {},
+        _clocks(figures, support.start, none.limits) if began else dict(none.clocks),
         _first_gas(figures, support.start, end) if began else Waits(),
         _gas_timing(figures, start, end), _windows(figures, support.end, start, end),
         support.hours_on_mask(start, end), max(high - low, 0) / HOUR,
@@ -220,8 +227,8 @@ def episode_statistics(episode: Episode, start: Instant, end: Instant, policy: P
     )  # fmt: skip
 
 
-def _clocks(figures: EpisodeFigures, began: Instant | None) -> dict[str, Waits]:
-    return {c.key: _wait(figures.profile.get(c.channel), began, c.limit_min) for c in START_CLOCKS}
+def _clocks(figures: EpisodeFigures, began: Instant | None, limits: Mapping[str, Limit]) -> dict[str, Waits]:
+    return {key: _wait(figures.profile.get(fact), began, limits[key].value) for key, fact in START_CLOCKS.items()}
 
 
 def _wait(begin: float | str | None, end: Instant | None, limit: float | None = None) -> Waits:

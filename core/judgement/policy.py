@@ -24,10 +24,16 @@ from core.judgement.policy_sections import (
     OxygenRules,
     ResponseRules,
     ScoreRules,
+    StartClocks,
     StateRules,
     TrendRules,
 )
 from core.record.message import refuse
+
+
+def _start_clocks() -> StartClocks:
+    """Those shipped: a ward's copy that is older than the section stands without it."""
+    return shipped_policy().start_clocks
 
 
 class Policy(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=True):
@@ -46,6 +52,7 @@ class Policy(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=Tr
     levers: Levers
     markers: dict[str, MarkerRule]
     due: dict[str, DueRule]
+    start_clocks: StartClocks = msgspec.field(default_factory=_start_clocks)
     hash: str = ""
 
 

@@ -145,6 +145,14 @@ class Levers(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
     epap_pf_mmHg: Limit
 
 
+class StartClocks(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
+    """Times to the start of support that shift figures are audited by, in minutes; nothing is judged by them."""
+
+    gas_to_start_min: Limit
+    decision_to_start_min: Limit
+    arrival_to_start_min: Limit
+
+
 class PressureLimit(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
     """A gas pressure in both printed forms, e.g. 45 mmHg and 6.0 kPa. The kPa form decides, in tenths."""
 

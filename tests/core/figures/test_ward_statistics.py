@@ -17,7 +17,8 @@ from core.figures.ward_statistics import (
     ward_statistics,
 )
 from core.judgement.flags import transitions, word_on
-from core.judgement.policy import shipped_policy
+from core.judgement.policy import read_policy, shipped_policy, shipped_text
+from core.judgement.policy_check import check
 from core.record.entries import Entry, NewEntry, recorded
 from core.record.episode import Episode, build_episode
 from core.record.knowledge import standing
@@ -110,7 +111,7 @@ def test_what_happened_after_the_span_is_not_in_it() -> None:
 
 def test_an_episode_that_ended_before_the_span_adds_nothing() -> None:
     ended = made(EARLIER + "-18:00 stopped\n", "C")
-    assert episode_statistics(ended, START, END, POLICY) == nothing(START, END)
+    assert episode_statistics(ended, START, END, POLICY) == nothing(START, END, POLICY)
     in_span = made(EARLIER + "-20:30 stopped\n", "C")
     assert episode_statistics(in_span, START, END, POLICY).ends == {"stopped": 1}
     assert episode_statistics(in_span, START, END, POLICY).hours_on_mask == pytest.approx(1.0)
@@ -143,3 +144,20 @@ def test_the_order_of_the_episodes_does_not_matter(order: list[int]) -> None:
     straight = ward_statistics(episodes, START, END, POLICY)
     assert replace(mixed, hours_on_mask=0, hours_possible=0) == replace(straight, hours_on_mask=0, hours_possible=0)
     assert mixed.hours_on_mask == pytest.approx(straight.hours_on_mask)
+
+
+def test_the_clocks_limits_are_the_wards_own() -> None:
+    text = shipped_text().replace("arrival_to_start_min = { value = 120", "arrival_to_start_min = { value = 150")
+    own = ward_statistics(ward(), START, END, read_policy(text))
+    assert own.clocks["arrival_to_start"].within == 2  # 30 and 140 min
+    assert own.limits["arrival_to_start"].value == 150
+    assert ward_statistics(ward(), START, END, POLICY).limits["arrival_to_start"].sure == "from memory"
+
+
+def test_a_copy_of_the_policy_that_is_older_than_the_clocks_has_those_shipped() -> None:
+    text = shipped_text()
+    before, _, rest = text.partition("[start_clocks]")
+    older = before + rest[rest.index("# Markers.") :]
+    assert check(older).usable
+    found = ward_statistics(ward(), START, END, read_policy(older))
+    assert found.limits == nothing(START, END, POLICY).limits
