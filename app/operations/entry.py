@@ -15,7 +15,7 @@ from core.record.channels import Group, channel
 from core.record.entries import Action, Entry, NewEntry, from_reading
 from core.record.episode import Episode
 from core.record.instant import Instant
-from core.record.local_time import LEAD
+from core.record.local_time import check_not_future
 from core.record.log_line import LogLine, read_line
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
@@ -242,37 +242,18 @@ def undo(store: Store, who: str, now: Instant, request: UndoRequest) -> Outcome[
     return _append(store, request.episode, tuple(inverse), who, "entry.undo", now)
 
 
-def check_not_future(at: Instant, now: Instant) -> None:
-    """Refuse a moment that leads the clock by more than clocks on a ward differ.
-
-    Raises:
-        RecordError: `entry.in_future`.
-    """
-    if at > now + LEAD:
-        raise refuse("entry.in_future", at=at, now=now, accepted="now or earlier")
-
-
 def _previewed(store: Store, now: Instant, request: LineRequest) -> Preview:
     episode = _episode(store, request.episode, new=request.new)
     settings = SettingsInForce(episode)
     line = read_line(request.line, now=now, zone=request.zone, in_force=settings.at, gas_unit=request.gas_unit)
     check_not_future(line.at, now)
-    return Preview(episode.key, episode.label, line, _questions(store, episode, line.at, line.readings))
+    return Preview(episode.key, episode.label, line, questions(store, episode, line.at, line.readings))
 
 
 def _episode(store: Store, key: str, *, new: bool) -> Episode:
     if new and key.strip() not in store.episode_keys():
         return Episode(checked_key(key), (), {}, {}, ())
     return load(store, key)
-
-
-def _questions(store: Store, episode: Episode, at: Instant, readings: Sequence[Reading]) -> tuple[Message, ...]:
-    asked = [doubt for r in readings for doubt in r.doubts]
-    asked += second_values(readings, at, episode.standing)
-    if any(r.channel.group is Group.GAS for r in readings):
-        sample = next((g for g in episode.gases if g.at == at), None)
-        asked += gas_doubts(readings, SettingsInForce(episode).at(at), in_force(store), sample)
-    return tuple(asked)
 
 
 def _append(

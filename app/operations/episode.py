@@ -17,6 +17,7 @@ from core.record.channels import Kind, channel
 from core.record.entries import from_reading
 from core.record.episode import Episode
 from core.record.instant import Instant
+from core.record.local_time import check_not_future
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
 from core.record.settings import Settings
@@ -119,8 +120,6 @@ def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -
 
 def _read(request: BeginRequest, key: str, now: Instant) -> tuple[tuple[Instant, tuple[Reading, ...]], ...]:
     """The readings of a request by moment, the facts first."""
-    from app.operations.entry import check_not_future
-
     at = now if request.at is None else request.at
     moments = [(at, dict(request.facts) or {"label": key}), *((g.at, g.values) for g in request.given)]
     for moment, _ in moments:

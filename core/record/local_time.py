@@ -77,6 +77,16 @@ def latest_wall_time(
     raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
 
 
+def check_not_future(at: Instant, now: Instant) -> None:
+    """Refuse a moment that leads the clock by more than clocks on a ward differ.
+
+    Raises:
+        RecordError: `entry.in_future`.
+    """
+    if at > now + LEAD:
+        raise refuse("entry.in_future", at=at, now=now, accepted="now or earlier")
+
+
 def _around(today: date, hour: int, minute: int, zone: str) -> tuple[Instant, ...]:
     """The moments of a wall time today and tomorrow: after 23:00 a slip may lie beyond midnight."""
     wall = time(hour, minute)
