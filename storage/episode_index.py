@@ -74,6 +74,26 @@ def open_episode_keys(connection: sa.Connection) -> tuple[str, ...]:
     return tuple(row[0] for row in connection.execute(query.order_by(_now.first_seq, _now.episode_id)))
 
 
+def standing_keys(connection: sa.Connection, since: int, head: int | None) -> tuple[str, ...]:
+    """Every episode that may stand at or after `since` as known at a sequence, in order of first recording.
+
+    The table tells the end as known now. Where something was recorded after `head`, the end may have been another
+    one then, so such an episode is named too: the caller holds each against its own record.
+    """
+    stands = _now.ended_at.is_(None) | (_now.ended_at > since)
+    query = sa.select(_now.episode_id).order_by(_now.first_seq, _now.episode_id)
+    if head is None:
+        query = query.where(stands)
+    else:
+        query = query.where(_now.first_seq <= head, stands | (_now.last_seq > head))
+    return tuple(row[0] for row in connection.execute(query))
+
+
+def is_known(connection: sa.Connection, episode: str) -> bool:
+    """Whether anything was ever recorded of an episode that is still there."""
+    return connection.execute(sa.select(_now.first_seq).where(_now.episode_id == episode)).first() is not None
+
+
 def rebuilt(connection: sa.Connection) -> list[dict[str, object]]:
     """The table as the ledger alone makes it, by episode."""
     found: dict[str, dict[str, object]] = {}

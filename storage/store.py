@@ -36,12 +36,12 @@ from storage.draft_batch import (
     SourceFacts,
 )
 from storage.engine import BUSY_SECONDS, fold_journal
-from storage.errors import StoreError, store_error
+from storage.errors import StoreError
 from storage.ledger import append_batch, replaced_entries
 from storage.people import PersonEvent
 from storage.person_events import person_events
 from storage.rules import Replaced, is_device_channel
-from storage.store_kept import StoreKept
+from storage.store_care import StoreCare
 
 __all__ = ["Changes", "Receipt", "SourceFacts", "Store", "StoreError"]
 
@@ -50,7 +50,7 @@ _PRINTED_DIGITS = 16
 
 
 @dataclass(frozen=True)
-class Store(StoreKept):
+class Store(StoreCare):
     """An open store. Make one with `create` or `open`; close it, or use it as a context manager."""
 
     @classmethod
@@ -90,16 +90,6 @@ class Store(StoreKept):
         self, kind: type[BaseException] | None, error: BaseException | None, trace: TracebackType | None
     ) -> None:
         self.close()
-
-    @property
-    def is_encrypted(self) -> bool:
-        """Whether the file is encrypted."""
-        return self._opened.key is not None
-
-    @property
-    def read_only(self) -> bool:
-        """Whether nothing can be written; `notices` say why where nobody asked for it."""
-        return self._opened.database.read_only
 
     def takes_writing(self, seconds: float = 0.2) -> bool:
         """Whether an entry could be recorded now: not read-only, and no other program holds the write lock."""
@@ -263,6 +253,19 @@ class Store(StoreKept):
         with self._opened.database.read() as connection:
             return index.open_episode_keys(connection)
 
+    def standing_keys(self, since: Instant, head: int | None = None) -> tuple[str, ...]:
+        """The episodes that may not have ended by `since`, as known at a sequence; quick in a store of any age.
+
+        None that stood is missing; one whose end was changed after `head` may be among them.
+        """
+        with self._opened.database.read() as connection:
+            return index.standing_keys(connection, since, head)
+
+    def has_episode(self, key: str) -> bool:
+        """Whether anything is recorded of an episode."""
+        with self._opened.database.read() as connection:
+            return index.is_known(connection, key)
+
     def texts_of(self, channel: str) -> tuple[tuple[str, str], ...]:
         """Every text that stands for a text channel, with its episode: (episode, text)."""
         with self._opened.database.read() as connection:
@@ -302,86 +305,6 @@ class Store(StoreKept):
         """What the rules need to know of an entry that is to be replaced; None where the store has it not."""
         with self._opened.database.read() as connection:
             return replaced_entries(connection, [entry_id]).get(entry_id)
-
-    # -- care ----------------------------------------------------------------------------------------
-
-    def verify(self) -> tuple[Message, ...]:
-        """Check the store whole; one message per finding, none when all is well.
-
-        Raises:
-            StoreError: `store.newer` for a store of a newer format: its rows may hold more than is known here.
-        """
-        from storage.verify import findings
-
-        if newer := opening.newer_notice(self._opened.facts, self.path):
-            raise store_error("store.newer", **newer.values, accepted=s.FORMAT)
-
-        return findings(self._opened.database, encrypted=self.is_encrypted)
-
-    def backup(self, path: Path | str) -> None:
-        """Write a backup, encrypted as the store is, while others go on working.
-
-        Raises:
-            StoreError: `store.exists`, `store.disk_full`.
-        """
-        from storage.backup import backup
-
-        backup(self.path, self._opened.key, Path(path))
-
-    @classmethod
-    def restore(cls, backup_path: Path | str, new_path: Path | str, *, passphrase: str | None = None) -> None:
-        """Make a new store of a backup; an existing file is never overwritten. One that is damaged is refused:
-        a plain one always, an encrypted one when its passphrase is given.
-
-        Raises:
-            StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`.
-        """
-        from storage.backup import restore
-
-        restore(Path(backup_path), Path(new_path), passphrase)
-
-    def change_passphrase(self, secret: str, new: str, cost: keys.Cost = keys.DEFAULT_COST) -> None:
-        """Give the store a new passphrase; `secret` is the old one or the recovery code.
-
-        Raises:
-            StoreError: `key.wrong_passphrase`, `store.not_encrypted`.
-        """
-        self._refuse_read_only()
-        envelope = keys.envelope_path(self.path)
-        keys.write_envelope(envelope, keys.change_passphrase(self._envelope(), secret, new, cost))
-
-    def new_recovery_code(self, secret: str, cost: keys.Cost = keys.DEFAULT_COST) -> str:
-        """Make a new recovery code; the old one opens nothing any more. It is given out here and kept nowhere.
-
-        Raises:
-            StoreError: `key.wrong_passphrase`, `store.not_encrypted`, `store.read_only`.
-        """
-        self._refuse_read_only()
-        text, code = keys.change_recovery_code(self._envelope(), secret, cost)
-        keys.write_envelope(keys.envelope_path(self.path), text)
-        return code
-
-    def opens_with(self, secret: str) -> bool:
-        """Whether a secret is the passphrase or the recovery code.
-
-        Raises:
-            StoreError: `store.not_encrypted`, or the envelope is missing or altered.
-        """
-        try:
-            return keys.open_envelope(self._envelope(), secret) == self._opened.key
-        except StoreError as error:
-            if error.message.key != "key.wrong_passphrase":
-                raise
-            return False
-
-    def _envelope(self) -> str:
-        if not self.is_encrypted:
-            raise store_error("store.not_encrypted", path=self.path.name)
-        return keys.read_envelope(keys.envelope_path(self.path))
-
-    def _refuse_read_only(self) -> None:
-        if self.read_only:
-            raise store_error("store.read_only", path=self.path.name)
 
 
 def encoded(block: DeviceSamples) -> tuple[DraftChunk, ...]:

@@ -91,7 +91,7 @@ def begin(store: Store, who: str, now: Instant, request: BeginRequest) -> Outcom
         RecordError: `episode.exists`, `episode.bad_key`, or what is wrong with a fact.
     """
     key = checked_key(request.episode)
-    if key in store.episode_keys():
+    if store.has_episode(key):
         raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
     entries = [
         from_reading(key, at, reading, by=who, zone=request.zone, confirmed=request.confirmed)
@@ -109,7 +109,7 @@ def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -
         RecordError: as `begin`.
     """
     key = checked_key(request.episode)
-    if key in store.episode_keys():
+    if store.has_episode(key):
         raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
     read = _read(request, key, now)
     asked = [doubt for _, readings in read for r in readings for doubt in r.doubts]
@@ -155,8 +155,8 @@ def check_known(store: Store, key: str) -> None:
     Raises:
         RecordError: `episode.unknown`, with the keys that are near.
     """
-    known = store.episode_keys()
-    if key not in known:
+    if not store.has_episode(key):
+        known = store.episode_keys()
         near = ", ".join(get_close_matches(key, known, 5, 0.5) or list(known[:8])) or "none yet"
         raise refuse("episode.unknown", episode=key, accepted=near)
 

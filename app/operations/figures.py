@@ -114,7 +114,10 @@ def _head_for(store: Store, known_at: Instant | None) -> int | None:
 def _keys(store: Store, request: WardRequest) -> Sequence[str]:
     if request.episodes is not None:
         return request.episodes
-    return store.episode_keys(_head_for(store, request.as_known_at))
+    head = _head_for(store, request.as_known_at)
+    if request.everything:
+        return store.episode_keys(head)
+    return store.standing_keys(request.as_of - RECENTLY_ENDED, head)
 
 
 def _stands(record: Episode, request: WardRequest) -> bool:

@@ -6,10 +6,10 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from app.operations.entry import Recorded
 from app.operations.episode import check_known, load
 from app.operations.outcome import Outcome
 from app.operations.policy import in_force
+from app.operations.recording import Recorded
 from core.figures.episode_figures import episode_figures
 from core.judgement.flag_history import transitions, word_on
 from core.judgement.shapes import FlagFigure
@@ -39,8 +39,7 @@ def keep_transitions(store: Store, who: str, now: Instant, request: Iterable[str
     store: the next look tells it."""
     policy = in_force(store)
     entries: list[NewEntry] = []
-    there = frozenset(store.episode_keys())
-    for key in (k for k in request if k in there):  # one may have been removed meanwhile
+    for key in (k for k in request if store.has_episode(k)):  # one may have been removed meanwhile
         record = load(store, key)
         flags = episode_figures(record, now, policy).flags
         entries += transitions(flags, record.transitions, key, policy.hash, now)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from app.operations.figures import RECENTLY_ENDED
 from app.operations.outcome import Outcome
 from app.operations.policy import found as policy_found
 from core.judgement.policy import Policy
@@ -20,7 +21,8 @@ if TYPE_CHECKING:
 class StoreFacts:
     """What a view must know of a store before it shows anything.
 
-    `printed_head` is the sequence and the first 16 hex digits of the chain's newest hash.
+    `episodes` are those that are open or ended recently; `printed_head` is the sequence and the first 16 hex digits
+    of the chain's newest hash.
     """
 
     episodes: frozenset[str]
@@ -49,11 +51,11 @@ class Changes:
 
 
 def describe(store: Store, who: str, now: Instant, request: None) -> Outcome[StoreFacts]:
-    """The store's episodes, its state, and the policy in force."""
+    """The ward's episodes, the store's state, and the policy in force."""
     head = store.head()
     in_force = policy_found(store)
     facts = StoreFacts(
-        frozenset(store.episode_keys()), in_force.policy, store.read_only, store.is_encrypted,
+        frozenset(store.standing_keys(now - RECENTLY_ENDED)), in_force.policy, store.read_only, store.is_encrypted,
         (*store.notices, *in_force.passed_over), store.printed_head(), store.changes_since(head).layout_revision,
         _has_people(store),
     )  # fmt: skip

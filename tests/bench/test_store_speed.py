@@ -16,8 +16,12 @@ from time import perf_counter
 import numpy as np
 import pytest
 
+from app.operations import episode_shelf
+from app.operations import figures as figure_operations
+from app.operations import flag as flag_operations
+from app.operations import store as store_operations
 from core.record.entries import NewEntry
-from core.record.instant import HOUR, MINUTE, SECOND
+from core.record.instant import DAY, HOUR, MINUTE, SECOND
 from core.record.samples import DeviceSamples
 from storage.draft_batch import DraftBatch, DraftEntry
 from storage.keys import Cost
@@ -75,13 +79,15 @@ def test_one_entry_costs_as_many_syncs_as_a_bare_insert(tmp_path: Path, capsys: 
     assert per_entry["store"] <= per_entry["bare"] + 0.1
 
 
-def filled(path: Path, episodes: int) -> Path:
-    """A store of closed episodes with a few entries each."""
+def filled(path: Path, episodes: int, still_open: int = 0) -> Path:
+    """A store of closed episodes with a few entries each, and some that are still open."""
     with Store.create(path, now=NOW) as store:
         for start in range(0, episodes, 500):
             rows = [_few_entries(f"E{i}") for i in range(start, min(start + 500, episodes))]
             drafts = tuple(DraftEntry(e) for row in rows for e in row)
             store.append_drafts((DraftBatch("AB", "log", drafts),), (NOW,))
+        for i in range(still_open):
+            store.append(_few_entries(f"O{i}")[:-1], by="AB", operation="log", now=NOW)
     return path
 
 
@@ -105,6 +111,31 @@ def test_opening_a_store_of_20000_closed_episodes(tmp_path: Path, capsys: pytest
     few, many = interleaved(30, opened(small), opened(large))
     with capsys.disabled():
         print(f"\nopening: 20 episodes {few * 1e3:.1f} ms, 20,000 {many * 1e3:.1f} ms, ratio {many / few:.2f}")
+    assert many <= 1.3 * few
+
+
+def test_a_window_opening_a_store_of_20000_closed_episodes(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """What a window asks before its first ward view stands, and right after: the same operations in their order."""
+    stores = [filled(tmp_path / f"{n}.luff", n, still_open=12) for n in (20, 20_000)]
+    now = NOW + 3 * DAY
+
+    def opened(path: Path) -> Callable[[int], object]:
+        def run(_i: int) -> None:
+            episode_shelf._shelves.clear()  # a window that was just started has read nothing yet
+            with Store.open(path) as store:
+                facts = store_operations.describe(store, "AB", now, None).value
+                ward = figure_operations.of_ward(store, "AB", now, figure_operations.WardRequest(now)).value
+                flag_operations.keep_transitions(store, "AB", now, sorted(facts.episodes))
+                store_operations.changes(store, "AB", now, store.head())
+                assert len(ward.episodes) == len(facts.episodes) == 12
+
+        return run
+
+    few, many = interleaved(20, *(opened(p) for p in stores))
+    with capsys.disabled():
+        print(f"\nwindow opening: 20 closed {few * 1e3:.0f} ms, 20,000 {many * 1e3:.0f} ms, ratio {many / few:.2f}")
     assert many <= 1.3 * few
 
 

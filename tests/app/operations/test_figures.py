@@ -5,8 +5,9 @@ from pathlib import Path
 
 import pytest
 
-from app.operations import entry, episode, figures
+from app.operations import correction, entry, episode, figures
 from app.operations.episode_shelf import shelf_of
+from core.record.entries import NewEntry
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
 from storage.store import Store
@@ -58,7 +59,7 @@ def test_an_entry_moved_away_leaves_both_episodes_right(store: Store) -> None:
     made = log(store, "A", "02:00 rr 30")
     ask(store, "A")
     ask(store, "B")
-    entry.move(store, "AB", NOW, entry.MoveRequest("A", made.ids[0], "B", "wrong bed"))
+    correction.move(store, "AB", NOW, correction.MoveRequest("A", made.ids[0], "B", "wrong bed"))
     assert ask(store, "A").record.latest("rr") is None
     assert ask(store, "B").record.latest("rr") == 30
 
@@ -89,3 +90,22 @@ def test_the_ward_holds_who_is_there_at_the_moment(store: Store) -> None:
     assert keys(NOW) == {"A", "B"}
     assert keys(NOW + 25 * HOUR) == {"A"}
     assert keys(NOW + 25 * HOUR, everything=True) == {"A", "B"}
+
+
+def test_the_ward_of_a_store_in_its_second_year_reads_only_who_is_on_it(
+    store: Store, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    for key in ("A", "B"):
+        log(store, key, "02:00 16/6 35")
+    ended = NewEntry("B", "ended_at", NOW, float(NOW))
+    store.append([ended], by="AB", operation="log", now=NOW)
+    later = NOW + 400 * 24 * HOUR
+    read: list[str] = []
+    shelf = shelf_of(store)
+    get = shelf.get
+    monkeypatch.setattr(shelf, "get", lambda s, key: read.append(key) or get(s, key))
+    ward = figures.of_ward(store, "AB", later, figures.WardRequest(later)).value
+    assert [e.figures.episode for e in ward.episodes] == ["A"]
+    assert read == ["A"]
+    figures.of_ward(store, "AB", later, figures.WardRequest(later, everything=True))
+    assert sorted(read) == ["A", "A", "B"]

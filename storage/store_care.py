@@ -1,0 +1,105 @@
+"""What keeps a store safe: checking it whole, backups and restoring, the secrets that open it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+
+from core.record.message import Message
+from storage import keys, opening
+from storage import schema as s
+from storage.errors import StoreError, store_error
+from storage.store_kept import StoreKept
+
+
+@dataclass(frozen=True)
+class StoreCare(StoreKept):
+    """The part of an open store that cares for its file. `storage.store.Store` is the whole."""
+
+    @property
+    def is_encrypted(self) -> bool:
+        """Whether the file is encrypted."""
+        return self._opened.key is not None
+
+    @property
+    def read_only(self) -> bool:
+        """Whether nothing can be written; `notices` say why where nobody asked for it."""
+        return self._opened.database.read_only
+
+    def verify(self) -> tuple[Message, ...]:
+        """Check the store whole; one message per finding, none when all is well.
+
+        Raises:
+            StoreError: `store.newer` for a store of a newer format: its rows may hold more than is known here.
+        """
+        from storage.verify import findings
+
+        if newer := opening.newer_notice(self._opened.facts, self.path):
+            raise store_error("store.newer", **newer.values, accepted=s.FORMAT)
+
+        return findings(self._opened.database, encrypted=self.is_encrypted)
+
+    def backup(self, path: Path | str) -> None:
+        """Write a backup, encrypted as the store is, while others go on working.
+
+        Raises:
+            StoreError: `store.exists`, `store.disk_full`.
+        """
+        from storage.backup import backup
+
+        backup(self.path, self._opened.key, Path(path))
+
+    @classmethod
+    def restore(cls, backup_path: Path | str, new_path: Path | str, *, passphrase: str | None = None) -> None:
+        """Make a new store of a backup; an existing file is never overwritten. One that is damaged is refused:
+        a plain one always, an encrypted one when its passphrase is given.
+
+        Raises:
+            StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`.
+        """
+        from storage.backup import restore
+
+        restore(Path(backup_path), Path(new_path), passphrase)
+
+    def change_passphrase(self, secret: str, new: str, cost: keys.Cost = keys.DEFAULT_COST) -> None:
+        """Give the store a new passphrase; `secret` is the old one or the recovery code.
+
+        Raises:
+            StoreError: `key.wrong_passphrase`, `store.not_encrypted`.
+        """
+        self._refuse_read_only()
+        envelope = keys.envelope_path(self.path)
+        keys.write_envelope(envelope, keys.change_passphrase(self._envelope(), secret, new, cost))
+
+    def new_recovery_code(self, secret: str, cost: keys.Cost = keys.DEFAULT_COST) -> str:
+        """Make a new recovery code; the old one opens nothing any more. It is given out here and kept nowhere.
+
+        Raises:
+            StoreError: `key.wrong_passphrase`, `store.not_encrypted`, `store.read_only`.
+        """
+        self._refuse_read_only()
+        text, code = keys.change_recovery_code(self._envelope(), secret, cost)
+        keys.write_envelope(keys.envelope_path(self.path), text)
+        return code
+
+    def opens_with(self, secret: str) -> bool:
+        """Whether a secret is the passphrase or the recovery code.
+
+        Raises:
+            StoreError: `store.not_encrypted`, or the envelope is missing or altered.
+        """
+        try:
+            return keys.open_envelope(self._envelope(), secret) == self._opened.key
+        except StoreError as error:
+            if error.message.key != "key.wrong_passphrase":
+                raise
+            return False
+
+    def _envelope(self) -> str:
+        if not self.is_encrypted:
+            raise store_error("store.not_encrypted", path=self.path.name)
+        return keys.read_envelope(keys.envelope_path(self.path))
+
+    def _refuse_read_only(self) -> None:
+        if self.read_only:
+            raise store_error("store.read_only", path=self.path.name)
