@@ -22,9 +22,10 @@ from PySide6.QtWidgets import (
 )
 
 from app.failure import Failure
-from app.operations import entry
-from app.operations.entry import LineRequest, Preview, Recorded
+from app.operations import correction, entry
+from app.operations.entry import LineRequest, Preview
 from app.operations.outcome import Outcome
+from app.operations.recording import Recorded
 from app.phrases import channel_name
 from app.readers import reader_at
 from app.session import SessionModel
@@ -341,8 +342,8 @@ class LogStrip(QFrame):
             self._become(State.TOLD, escape(self.tr("Nothing to undo.")))
             return
         last = self._undo.pop()
-        request = entry.UndoRequest(last.episode, last.ids)
-        self._model.ask(entry.undo, request, done=self._undone, failed=self._failed)
+        request = correction.UndoRequest(last.episode, last.ids)
+        self._model.ask(correction.undo, request, done=self._undone, failed=self._failed)
 
     def _undone(self, outcome: Outcome[Recorded]) -> None:
         names = ", ".join(dict.fromkeys(channel_name(e.channel) for e in outcome.value.entries))

@@ -7,16 +7,17 @@ import sys
 
 from app.commands.context import Context
 from app.formats import plain, quantity, wall
-from app.operations import entry as operations
+from app.operations import correction
 from app.operations import episode as episodes
 from app.operations import flag as flags
 from app.operations.outcome import Outcome
+from app.operations.recording import Recorded
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
 from core.record.entries import Action, Entry, NewEntry
 from core.record.episode import Episode
 from core.record.local_time import zoned_iso
-from core.record.message import refuse
+from core.record.message import Message, refuse
 from storage.store import Store
 
 SHORT_ID = 8
@@ -36,7 +37,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
             return _list(context, record, reader)
         entry_id = _whole_id(record, args.entry)
         old = next(s.entry for s in record.standing if s.entry.id == entry_id)
-        asked = () if args.value is None else operations.correction_questions(old, args.value, args.unit)
+        asked = _questions(context, store, args, entry_id)
         if asked and not args.yes and args.reason.strip():
             told = plain(" ".join(sentence(m, reader) for m in asked))
             print(f"luffmark: not recorded. {told} Answer yes with --yes.", file=sys.stderr)
@@ -51,7 +52,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
     return 0
 
 
-def _done(old: Entry, made: operations.Recorded, reader: Reader) -> str:
+def _done(old: Entry, made: Recorded, reader: Reader) -> str:
     """What stood and what stands now, each with its moment where that changed."""
     new = made.entries[0]
     name, was, then = CHANNELS[old.channel].name, _value(old, reader), wall(old.at, reader.zone)
@@ -70,20 +71,27 @@ def _facts(e: NewEntry, reader: Reader) -> dict[str, object]:
             "value": e.number if e.words is None else e.words}  # fmt: skip
 
 
-def _supersede(
-    context: Context, store: Store, args: argparse.Namespace, entry_id: str
-) -> Outcome[operations.Recorded]:
+def _supersede(context: Context, store: Store, args: argparse.Namespace, entry_id: str) -> Outcome[Recorded]:
     now, who = context.now(), context.by
     if args.withdraw:
-        withdrawal = operations.WithdrawalRequest(args.episode, entry_id, args.reason)
-        return operations.withdraw(store, who, now, withdrawal)
+        withdrawal = correction.WithdrawalRequest(args.episode, entry_id, args.reason)
+        return correction.withdraw(store, who, now, withdrawal)
     if args.move_to is not None:
-        move = operations.MoveRequest(args.episode, entry_id, args.move_to, args.reason)
-        return operations.move(store, who, now, move)
-    correction = operations.CorrectionRequest(
-        args.episode, entry_id, args.reason, args.value, args.unit, args.at, args.yes
-    )
-    return operations.correct(store, who, now, correction)
+        move = correction.MoveRequest(args.episode, entry_id, args.move_to, args.reason)
+        return correction.move(store, who, now, move)
+    return correction.correct(store, who, now, _right(args, entry_id))
+
+
+def _right(args: argparse.Namespace, entry_id: str) -> correction.CorrectionRequest:
+    return correction.CorrectionRequest(args.episode, entry_id, args.reason, args.value, args.unit, args.at, args.yes)
+
+
+def _questions(context: Context, store: Store, args: argparse.Namespace, entry_id: str) -> tuple[Message, ...]:
+    """What the right value or time raises; a withdrawal and a move raise nothing."""
+    if args.value is None and args.at is None:
+        return ()
+    request = _right(args, entry_id)
+    return correction.correction_questions(store, context.by, context.now(), request).value
 
 
 def _whole_id(record: Episode, start: str) -> str:

@@ -5,8 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
-from app.operations.entry import Recorded
 from app.operations.outcome import Outcome
+from app.operations.recording import Recorded
 from core.judgement.shapes import DueFigure
 
 if TYPE_CHECKING:

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
 from app.log_strip import LogStrip
-from app.operations.entry import Recorded
+from app.operations.recording import Recorded
 
 if TYPE_CHECKING:
     from app.forms.entry_form import EntryForm

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from app.deeds.forms import FormDeeds
 from app.operations import flag as flag_operations
-from app.operations.entry import Recorded
 from app.operations.outcome import Outcome
+from app.operations.recording import Recorded
 from app.ward.lane_words import strongest_flag
 from app.ward.moves import label_told_apart
 from core.judgement.shapes import FlagFigure

@@ -20,8 +20,9 @@ from app.chooser import Chooser
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import quantity, wall
-from app.operations import entry
+from app.operations import correction
 from app.operations.outcome import Outcome
+from app.operations.recording import Recorded
 from app.phrases import channel_name
 from app.session import SessionModel
 from app.strip.settle_time import SettleTime
@@ -32,7 +33,7 @@ from core.record.entries import Entry
 from core.record.episode import Episode
 from core.record.instant import Instant
 from core.record.local_time import latest_wall_time, local
-from core.record.message import RecordError
+from core.record.message import Message, RecordError
 
 _ENTRY = Qt.ItemDataRole.UserRole
 
@@ -65,7 +66,7 @@ class CorrectDialog(AskingDialog):
         self.go.setText(self.tr("Record it"))
         self._model, self._record, self._reader = model, record, reader
         self._confirmed = False
-        self._sent: tuple[str | None, str] = (None, "")
+        self._sent: correction.CorrectionRequest | None = None
         self.settle = SettleTime()
         self.whom = QLabel(title)
         self.whom.setTextFormat(Qt.TextFormat.PlainText)
@@ -193,17 +194,19 @@ class CorrectDialog(AskingDialog):
     def _ask(self, found: Entry) -> None:
         act, reason = self.act.currentData(), self.reason.text()
         if act == Act.WITHDRAW:
-            request: object = entry.WithdrawalRequest(found.episode, found.id, reason)
-            self._model.ask(entry.withdraw, request, done=self._done, failed=self._failed)
+            request: object = correction.WithdrawalRequest(found.episode, found.id, reason)
+            self._model.ask(correction.withdraw, request, done=self._done, failed=self._failed)
         elif act == Act.MOVE:
-            request = entry.MoveRequest(found.episode, found.id, self.to.currentData(), reason)
-            self._model.ask(entry.move, request, done=self._done, failed=self._failed)
+            request = correction.MoveRequest(found.episode, found.id, self.to.currentData(), reason)
+            self._model.ask(correction.move, request, done=self._done, failed=self._failed)
         else:
-            value, unit = self._sent = self._typed(found)
-            request = entry.CorrectionRequest(
-                found.episode, found.id, reason, value, unit, self._at(found), self._confirmed
-            )
-            self._model.ask(entry.correct, request, done=self._done, failed=self._failed)
+            self._sent = self._right(found)
+            self._model.ask(correction.correct, self._sent, done=self._done, failed=self._failed)
+
+    def _right(self, found: Entry) -> correction.CorrectionRequest:
+        value, unit = self._typed(found)
+        reason, at = self.reason.text(), self._at(found)
+        return correction.CorrectionRequest(found.episode, found.id, reason, value, unit, at, self._confirmed)
 
     def _typed(self, found: Entry) -> tuple[str | None, str]:
         text = self.value.text().strip()
@@ -224,19 +227,29 @@ class CorrectDialog(AskingDialog):
             hour, minute = "99", "99"
         return latest_wall_time(int(hour), int(minute), now=self._model.session.now(), zone=self._reader.zone)
 
-    def _done(self, outcome: Outcome[entry.Recorded]) -> None:
+    def _done(self, outcome: Outcome[Recorded]) -> None:
         self.recorded.emit(outcome.value)
         self.accept()
 
     def _failed(self, failure: Failure) -> None:
-        text = sentence(failure.message, self._reader)
+        if failure.message.key == "line.unconfirmed" and self._sent is not None:
+            if self._still_sent():  # else the question is about what no longer stands there
+                self._model.ask(correction.correction_questions, self._sent, done=self._asked, failed=self._failed)
+            return
+        self.refuse(sentence(failure.message, self._reader))
+
+    def _asked(self, outcome: Outcome[tuple[Message, ...]]) -> None:
+        """The right value raises questions: pressing again says yes to them."""
+        if not self._still_sent():
+            return
+        self._confirmed = True
+        self.settle.start()
+        told = " ".join(sentence(m, self._reader) for m in outcome.value)
+        self.refuse(self.tr("{asked} 'Record it' again says yes.").format(asked=told))
+
+    def _still_sent(self) -> bool:
         found = self._entry()
-        if failure.message.key == "line.unconfirmed" and found is not None:
-            if self._typed(found) != self._sent:
-                return  # edited meanwhile: the question is about what no longer stands there
-            self._confirmed = True
-            self.settle.start()
-            asked = entry.correction_questions(found, *self._typed(found))
-            told = " ".join(sentence(m, self._reader) for m in asked)
-            text = self.tr("{asked} 'Record it' again says yes.").format(asked=told or text)
-        self.refuse(text)
+        try:
+            return found is not None and self._right(found) == self._sent
+        except RecordError:
+            return False

@@ -5,10 +5,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from app.operations.entry import Recorded
 from app.operations.episode import load
 from app.operations.outcome import Outcome
 from app.operations.policy import in_force
+from app.operations.recording import Recorded
 from core.figures.episode_figures import episode_figures
 from core.record.entries import Action, NewEntry
 from core.record.instant import Instant

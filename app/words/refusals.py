@@ -12,10 +12,24 @@ TEMPLATES: Final[dict[str, str]] = {
     "correction.unknown_entry": "Entry {entry} is not one that can be corrected here. Name {accepted}.",
     "document.damaged": "Document {value} is not what was kept: its digest does not fit.",
     "document.unknown": "There is no document {value} in the store.",
+    "doubt.after_the_end":
+        "Support ended at {ended_at:time}: does it begin again?",
+    "doubt.gas_with_mask_off":
+        "A gas and the mask coming off stand at the same minute, {at:time}: the gas counts as drawn before. If it "
+        "was drawn after, log it a minute later.",
+    "doubt.gas_with_new_fio2":
+        "The FiO2 changes in the minute of the gas: the gas counts as drawn before, on {fio2:fraction}. If not, log "
+        "its own: gas fio2.",
+    "doubt.mask_off_already":
+        "The mask is off already, since {since:time}. Was it on in between?",
+    "doubt.mask_on_already":
+        "The mask is on already[[, since {since:time}]]. Was it off in between?",
     "doubt.salvaged": "It was saved from a damaged file, where nothing proves that it was not changed.",
     "doubt.second_value":
         "[[{channel:name} {first:of} is logged for this minute already ({at:time}). ]]Two values of one moment: "
         "which one is right?",
+    "doubt.settings_off_mask":
+        "The mask is off since {since:time}: these settings act once it is on. If it is on, log 'mask on' too.",
     "doubt.unusual":
         "{channel:name} {value:of} is outside the usual {low:of} to {high:of}.",
     "entry.id_too_long": "The id '{value}' is too long: at most {accepted} characters are accepted.",

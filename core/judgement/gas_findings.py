@@ -72,16 +72,18 @@ def gas_figure(
 
 
 def is_off_support(at: Instant, support: SupportTime, policy: Policy) -> bool:
-    """Whether a moment lies in a break, within the settling time after one, or after support ended.
+    """Whether a gas was drawn in a break, within the settling time after one, or after support ended.
 
-    Before support began is not off support: such a gas is a baseline.
+    Before support began is not off support: such a gas is a baseline. A gas of the very minute in which the mask
+    came off, or support ended, belongs before that.
     """
     if support.start is None or at < support.start:
         return False
-    if support.end is not None and at > support.end:
+    if support.end is not None and at // MINUTE > support.end // MINUTE:
         return True
     settle = int(policy.response.off_support_after_break_min.value * MINUTE)
-    return any(b.start <= at and (b.end is None or at <= b.end + settle) for b in support.breaks)
+    began = (b for b in support.breaks if b.start // MINUTE < at // MINUTE)
+    return any(b.end is None or at <= b.end + settle for b in began)
 
 
 def state_of(gas: GasSample, policy: Policy, reasons: dict[str, Message] | None = None) -> str | None:
@@ -110,8 +112,7 @@ def _fio2(
     gas: GasSample, settings: SettingsInForce, support: SupportTime, policy: Policy, warnings: list[Message]
 ) -> tuple[float, str | None]:
     """The FiO2 of a gas: its own beats the setting. A difference asks. In a break the setting says nothing."""
-    in_break = support.break_at(gas.at) is not None
-    setting = float("nan") if in_break else settings.fio2.at(gas.at)
+    setting = float("nan") if support.drawn_in(gas.at) is not None else settings.fio2_drawn_on(gas.at)
     if not isnan(gas.gas_fio2):
         if abs(gas.gas_fio2 - setting) > policy.oxygen.fio2_same_within.value + 1e-9:
             values = {"gas_fio2": gas.gas_fio2, "setting": setting}

@@ -70,7 +70,7 @@ def _same_support(ctx: Context, anchor: Anchor, gas: GasFigure) -> bool:
         return True
     if anchor.kind == "break_end":
         ended = next((b for b in ctx.support.breaks if b.end == anchor.first_at), None)
-        return ended is not None and ended.start < gas.at
+        return ended is not None and minute(ended.start) < minute(gas.at)
     return not gas.off_support and not _before_support(ctx, gas)
 
 

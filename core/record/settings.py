@@ -14,7 +14,7 @@ import numpy as np
 
 from core.record.channels import BILEVEL_MODES
 from core.record.episode import Episode
-from core.record.instant import Instant
+from core.record.instant import MINUTE, Instant
 from core.record.samples import Times, Values
 
 ROOM_AIR = 0.21
@@ -168,3 +168,12 @@ class SettingsInForce:
     def before(self, at: Instant) -> Settings:
         """The settings in force just before a moment."""
         return self.at(at - 1)
+
+    def fio2_drawn_on(self, at: Instant) -> float:
+        """The known FiO2 that a gas of a moment was drawn on, as a fraction.
+
+        A gas of a change's own minute belongs before it, so what oxygen was set before that minute counts; where
+        none was ever set before, that of the minute itself.
+        """
+        fio2, minute = self.fio2, at - at % MINUTE
+        return fio2.before(minute) if fio2.t.size and fio2.t[0] < minute else fio2.at(at)

@@ -55,6 +55,11 @@ class SupportTime:
         """The break a moment lies in."""
         return next((b for b in self.breaks if b.covers(at)), None)
 
+    def drawn_in(self, at: Instant) -> Break | None:
+        """The break a gas was drawn in. One of the break's first minute was drawn before the mask came off, as a
+        gas of an anchor's own minute belongs before the anchor."""
+        return next((b for b in self.breaks if b.covers(at) and at // MINUTE > b.start // MINUTE), None)
+
     def hours_on_mask(self, start: Instant, end: Instant) -> float:
         """Hours of support between two moments, breaks taken off."""
         if self.start is None:

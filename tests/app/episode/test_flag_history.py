@@ -6,7 +6,7 @@ import pytest
 from pytestqt.qtbot import QtBot
 
 from app.episode.flag_history import closed_flags, history_fact, line_of, word_lines
-from app.operations import entry, figures, flag
+from app.operations import correction, entry, figures, flag
 from app.theme import THEMES
 from app.words import Reader
 from core.judgement.shapes import EpisodeFigures, FlagFigure
@@ -52,8 +52,8 @@ def test_a_flag_taken_back_by_a_correction_says_so(path: Path) -> None:
     with Store.open(path) as store:
         flag.keep_transitions(store, "AB", NOW, ["bed-7"])
         wrong = next(e for e in store.entries("bed-7") if e.channel == "ph" and e.number == 7.24)
-        right = entry.CorrectionRequest("bed-7", wrong.id, "typed wrong", "7.34")
-        entry.correct(store, "AB", NOW + MINUTE, right)
+        right = correction.CorrectionRequest("bed-7", wrong.id, "typed wrong", "7.34")
+        correction.correct(store, "AB", NOW + MINUTE, right)
         flag.keep_transitions(store, "AB", NOW + MINUTE, ["bed-7"])
         undone = the(store, "ph_below_severe", NOW + HOUR)
         assert undone.undone_by_correction

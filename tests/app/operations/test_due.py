@@ -5,7 +5,7 @@ from pathlib import Path
 
 import pytest
 
-from app.operations import due, entry, episode, figures
+from app.operations import correction, due, entry, episode, figures
 from core.judgement.shapes import DueFigure
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
@@ -71,5 +71,5 @@ def test_closing_what_comes_again_asks_for_the_next(store: Store, what: str, nex
 
 def test_the_word_can_be_taken_back(store: Store) -> None:
     made = due.close(store, "CD", NOW, due.DueRequest("A", "skin_check")).value
-    entry.undo(store, "CD", NOW + MINUTE, entry.UndoRequest("A", made.ids))
+    correction.undo(store, "CD", NOW + MINUTE, correction.UndoRequest("A", made.ids))
     assert items(store, NOW + MINUTE)["skin_check"].state == "overdue"

@@ -7,7 +7,7 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
-from app.operations import entry, episode
+from app.operations import correction, entry, episode
 from app.words import sentence
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
@@ -94,6 +94,30 @@ def test_a_gas_that_does_not_agree_with_itself_is_asked_about(store: Store) -> N
     assert refused.value.message.values["first"] == "gas.inconsistent"
 
 
+def test_a_correction_asks_what_the_entry_itself_would_have_been_asked(store: Store) -> None:
+    made = log(store, "01:10 ph 7.30 paco2 60 hco3 28.9 gas fio2 28%", confirmed=True)
+    ids = dict(zip(("ph", "paco2", "hco3", "gas_fio2"), made.ids, strict=True))
+    wrong = correction.CorrectionRequest("A", ids["paco2"], "misread", "50")
+    asked = correction.correction_questions(store, "CD", NOW, wrong).value
+    assert [m.key for m in asked] == ["gas.inconsistent"]
+    with pytest.raises(RecordError) as refused:
+        correction.correct(store, "CD", NOW, wrong)
+    assert refused.value.message.key == "line.unconfirmed"
+    right = correction.CorrectionRequest("A", ids["paco2"], "misread", "61")
+    assert correction.correction_questions(store, "CD", NOW, right).value == ()
+    correction.correct(store, "CD", NOW, right)
+    assert store.episode("A").gases[0].paco2 == 61
+
+
+def test_a_correction_of_the_time_alone_asks_too(store: Store) -> None:
+    log(store, "00:30 16/6 35", confirmed=True)
+    log(store, "01:00 mask off", confirmed=True)
+    change = log(store, "00:50 18/6", confirmed=True)
+    later = correction.CorrectionRequest("A", change.ids[0], "typed wrong", at=NOW - 60 * MINUTE)
+    asked = correction.correction_questions(store, "CD", NOW, later).value
+    assert "doubt.settings_off_mask" in [m.key for m in asked]
+
+
 def test_a_moment_to_come_is_refused(store: Store) -> None:
     with pytest.raises(RecordError) as refused:
         entry.check_not_future(NOW + 6 * MINUTE, NOW)
@@ -103,7 +127,7 @@ def test_a_moment_to_come_is_refused(store: Store) -> None:
 
 def test_correction_supersedes_and_stays_visible(store: Store) -> None:
     made = log(store, "ph 7.31")
-    entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "misread", "7,13"))
+    correction.correct(store, "CD", NOW, correction.CorrectionRequest("A", made.ids[0], "misread", "7,13"))
     (gas,) = store.episode("A").gases
     assert (gas.ph, gas.corrected) == (7.13, True)
     assert gas.text("ph") == "7.13"
@@ -111,7 +135,7 @@ def test_correction_supersedes_and_stays_visible(store: Store) -> None:
 
 def test_correction_of_the_time_alone_keeps_the_value(store: Store) -> None:
     made = log(store, "rr 30")
-    entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "late", at=NOW - HOUR))
+    correction.correct(store, "CD", NOW, correction.CorrectionRequest("A", made.ids[0], "late", at=NOW - HOUR))
     series = store.episode("A").number("rr")
     assert (int(series.t[0]), float(series.v[0])) == (NOW - HOUR, 30.0)
 
@@ -120,33 +144,33 @@ def test_correction_of_the_time_alone_keeps_the_value(store: Store) -> None:
 def test_a_correction_needs_its_reason(store: Store, reason: str) -> None:
     made = log(store, "rr 30")
     with pytest.raises(RecordError) as refused:
-        entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], reason, "31"))
+        correction.correct(store, "CD", NOW, correction.CorrectionRequest("A", made.ids[0], reason, "31"))
     assert refused.value.message.key == "correction.no_reason"
 
 
 def test_what_was_superseded_cannot_be_corrected_again(store: Store) -> None:
     made = log(store, "rr 30")
-    entry.withdraw(store, "CD", NOW, entry.WithdrawalRequest("A", made.ids[0], "wrong bed"))
+    correction.withdraw(store, "CD", NOW, correction.WithdrawalRequest("A", made.ids[0], "wrong bed"))
     with pytest.raises(RecordError) as refused:
-        entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "again", "31"))
+        correction.correct(store, "CD", NOW, correction.CorrectionRequest("A", made.ids[0], "again", "31"))
     assert refused.value.message.key == "correction.superseded"
 
 
 def test_an_entry_moves_to_the_episode_it_belongs_to(store: Store) -> None:
     made = log(store, "rr 30")
-    moved = entry.move(store, "CD", NOW, entry.MoveRequest("A", made.ids[0], "B", "wrong bed")).value
+    moved = correction.move(store, "CD", NOW, correction.MoveRequest("A", made.ids[0], "B", "wrong bed")).value
     assert store.episode("A").latest("rr") is None
     assert store.episode("B").latest("rr") == 30
-    entry.undo(store, "CD", NOW, entry.UndoRequest("B", moved.ids))
+    correction.undo(store, "CD", NOW, correction.UndoRequest("B", moved.ids))
     assert store.episode("A").latest("rr") == 30
     assert store.episode("B").latest("rr") is None
 
 
 def test_undo_refuses_what_somebody_changed_since(store: Store) -> None:
     made = log(store, "rr 30")
-    entry.correct(store, "CD", NOW, entry.CorrectionRequest("A", made.ids[0], "recount", "28"))
+    correction.correct(store, "CD", NOW, correction.CorrectionRequest("A", made.ids[0], "recount", "28"))
     with pytest.raises(RecordError) as refused:
-        entry.undo(store, "AB", NOW, entry.UndoRequest("A", made.ids))
+        correction.undo(store, "AB", NOW, correction.UndoRequest("A", made.ids))
     assert refused.value.message.key == "undo.superseded"
     assert store.episode("A").latest("rr") == 28
 
@@ -165,19 +189,20 @@ def test_undo_brings_back_what_stood_before(tmp_path_factory: pytest.TempPathFac
             before = store.episode("A").latest("rr")
             last = _do(store, step, last, n, standing=before is not None)
             after = store.episode("A").latest("rr")
-            taken_back = entry.undo(store, "AB", NOW, entry.UndoRequest("A", last.ids)).value
+            taken_back = correction.undo(store, "AB", NOW, correction.UndoRequest("A", last.ids)).value
             assert store.episode("A").latest("rr") == before
-            last = entry.undo(store, "AB", NOW, entry.UndoRequest("A", taken_back.ids)).value
+            last = correction.undo(store, "AB", NOW, correction.UndoRequest("A", taken_back.ids)).value
             assert store.episode("A").latest("rr") == after
         assert store.verify() == ()
 
 
 def _do(store: Store, step: str, last: entry.Recorded, n: int, *, standing: bool) -> entry.Recorded:
     if step == "undo":
-        return entry.undo(store, "AB", NOW, entry.UndoRequest("A", last.ids)).value
+        return correction.undo(store, "AB", NOW, correction.UndoRequest("A", last.ids)).value
     if step == "log" or not standing:
         return log(store, f"rr {20 + n}", confirmed=True)
     current = store.episode("A").standing[-1].entry.id
     if step == "correct":
-        return entry.correct(store, "AB", NOW, entry.CorrectionRequest("A", current, "x", str(25 + n))).value
-    return entry.withdraw(store, "AB", NOW, entry.WithdrawalRequest("A", current, "x")).value
+        wanted = correction.CorrectionRequest("A", current, "x", str(25 + n), confirmed=True)
+        return correction.correct(store, "AB", NOW, wanted).value
+    return correction.withdraw(store, "AB", NOW, correction.WithdrawalRequest("A", current, "x")).value

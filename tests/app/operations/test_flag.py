@@ -5,7 +5,7 @@ from pathlib import Path
 
 import pytest
 
-from app.operations import entry, episode, figures, flag
+from app.operations import correction, entry, episode, figures, flag
 from core.judgement.shapes import FlagFigure
 from core.record.entries import Action
 from core.record.instant import HOUR, MINUTE, parse
@@ -68,7 +68,7 @@ def test_settling_needs_a_reason_and_an_open_flag(store: Store) -> None:
 def test_a_correction_undoes_the_flag_and_it_stays_visible(store: Store) -> None:
     flag.keep_transitions(store, "AB", NOW, ["A"])
     gas = next(s.entry for s in store.episode("A").standing if s.entry.channel == "ph")
-    entry.correct(store, "AB", NOW, entry.CorrectionRequest("A", gas.id, "misread", "7.41"))
+    correction.correct(store, "AB", NOW, correction.CorrectionRequest("A", gas.id, "misread", "7.41"))
     flag.keep_transitions(store, "AB", NOW + MINUTE, ["A"])
     gone = acidosis(store, NOW + MINUTE)
     assert gone.undone_by_correction
@@ -80,9 +80,9 @@ def test_a_word_on_a_flag_is_taken_back_by_undo(store: Store) -> None:
     seen = flag.see(store, "CD", NOW, flag.FlagRequest("A", before.flag_id)).value
     settled = flag.settle(store, "CD", NOW, flag.FlagRequest("A", before.flag_id, "misread")).value
     assert acidosis(store).state == "settled"
-    entry.undo(store, "CD", NOW + MINUTE, entry.UndoRequest("A", settled.ids))
+    correction.undo(store, "CD", NOW + MINUTE, correction.UndoRequest("A", settled.ids))
     assert acidosis(store, NOW + MINUTE).state == "seen"
-    entry.undo(store, "CD", NOW + MINUTE, entry.UndoRequest("A", seen.ids))
+    correction.undo(store, "CD", NOW + MINUTE, correction.UndoRequest("A", seen.ids))
     assert acidosis(store, NOW + MINUTE).state == "raised"
     words = [e.words for e in store.entries("A") if e.action is Action.FLAG and e.channel == "ph_below_severe"]
     assert words == ["raised", "seen", "settled", "reopened", "not seen"]

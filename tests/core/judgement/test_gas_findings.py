@@ -88,9 +88,29 @@ def test_an_impossible_gradient_says_the_fio2_cannot_be_right():
 
 @pytest.mark.parametrize(
     ("at", "off"),
-    [("00:30", False), ("01:30", False), ("02:00", True), ("02:29", True), ("03:00", True), ("03:01", False),
-     ("05:00", False), ("05:01", True)],
+    [("00:30", False), ("01:30", False), ("02:00", False), ("02:01", True), ("02:29", True), ("03:00", True),
+     ("03:01", False), ("05:00", False), ("05:01", True)],
 )  # fmt: skip
 def test_off_support_is_in_a_break_and_thirty_minutes_after_it_and_after_the_end(at, off):
     e = episode(START + "02:00 break start\n02:30 break end\n05:00 stopped")
     assert is_off_support(moment(at), support_time(e, SettingsInForce(e)), shipped_policy()) is off
+
+
+def test_a_gas_of_the_minute_in_which_the_mask_came_off_was_drawn_before_it():
+    log = START + "02:00 ph 7.30 paco2 60 pao2 60 site arterial\n02:00 mask off flow 2"
+    (figure,) = gases(log)
+    assert not figure.off_support
+    assert figure.fio2 == 0.4  # the oxygen of the mask, not that of the break
+    assert figure.fio2_from == "setting"
+
+
+def test_a_gas_of_the_minute_of_a_new_fio2_was_drawn_on_the_one_before():
+    (figure,) = gases(START + "02:00 ph 7.30 paco2 60 pao2 56 site arterial\n02:00 fio2 60")
+    assert (figure.fio2, round(figure.pf_mmHg)) == (0.4, 140)
+    (unknown,) = gases(START + "01:30 flow 4\n02:00 ph 7.30 paco2 60 pao2 56 site arterial\n02:00 fio2 60")
+    assert unknown.pf_mmHg is None
+
+
+def test_the_first_fio2_ever_is_that_of_a_gas_of_its_minute():
+    (figure,) = gases("02:00 fio2 40\n02:00 ph 7.30 paco2 60 pao2 56 site arterial")
+    assert figure.fio2 == 0.4

@@ -1,0 +1,58 @@
+"""What is asked before an entry is taken: unusual values, a second value, a gas against itself, the course."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+from app.operations.policy import in_force
+from core.judgement.entry_doubts import gas_doubts
+from core.judgement.order_doubts import order_doubts
+from core.judgement.second_value import second_values
+from core.record.channels import CHANNELS, Group
+from core.record.entries import Entry
+from core.record.episode import Episode, build_episode
+from core.record.instant import Instant
+from core.record.message import Message
+from core.record.reading import Reading
+from core.record.settings import SettingsInForce
+
+if TYPE_CHECKING:
+    from storage.store import Store
+
+
+def questions(store: Store, record: Episode, at: Instant, readings: Sequence[Reading]) -> tuple[Message, ...]:
+    """The questions that readings of one moment raise over an episode's record without them."""
+    asked = [doubt for r in readings for doubt in r.doubts]
+    asked += second_values(readings, at, record.standing)
+    if any(r.channel.group is Group.GAS for r in readings):
+        settings = SettingsInForce(record)
+        drawn_on = replace(settings.at(at), fio2=settings.fio2_drawn_on(at))
+        sample = next((g for g in record.gases if g.at == at), None)
+        asked += gas_doubts(readings, drawn_on, in_force(store), sample)
+    asked += order_doubts(readings, at, record)
+    return tuple(asked)
+
+
+def questions_of_change(
+    store: Store, record: Episode, old: Entry, at: Instant, reading: Reading
+) -> tuple[Message, ...]:
+    """The questions that a reading raises which takes the place of an entry: as if that had never been logged.
+
+    What the record before raised already, the entry's own value at its own time, is not asked again.
+    """
+    without = build_episode(record.key, [s for s in record.standing if s.entry.id != old.id])
+    asked = questions(store, without, at, (reading,))
+    if at == old.at and reading.value == _value(old):
+        return ()
+    return asked
+
+
+def reading_of(entry: Entry) -> Reading:
+    """An entry's value as it was read when it was logged."""
+    return Reading(CHANNELS[entry.channel], entry.number, entry.words, entry.raw, entry.raw_unit, entry.decimals)
+
+
+def _value(entry: Entry) -> float | str | None:
+    return entry.words if entry.number is None else entry.number
