@@ -27,14 +27,28 @@ def comfort_since(seen: Observed) -> Instant | None:
 
 
 def _overdue(items: Iterable[Item], as_of: Instant, rest: Instant | None) -> list[Spell]:
-    found = []
+    """Spells in which something was overdue. Each names every item in it, the first overdue first: the evidence
+    must bear out since when the flag stands."""
+    found: list[Spell] = []
     for item in items:
         until = min((t for t in (item.done_at, item.awaiting_since, rest) if t is not None), default=None)
         if as_of <= item.due_until or (until is not None and until <= item.due_until):
             continue
         told: dict[str, Value] = {"what": item.what, "until": item.due_until, "because": item.because.key}
         found.append(Spell(item.due_until, until, (Message("evidence.overdue", told),)))
-    return found
+    return _joined(found)
+
+
+def _joined(spells: Iterable[Spell]) -> list[Spell]:
+    out: list[Spell] = []
+    for spell in sorted(spells, key=lambda s: s.since):
+        last = out[-1] if out else None
+        if last is None or (last.until is not None and last.until < spell.since):
+            out.append(spell)
+            continue
+        until = None if last.until is None or spell.until is None else max(last.until, spell.until)
+        out[-1] = Spell(last.since, until, tuple(dict.fromkeys((*last.evidence, *spell.evidence))))
+    return out
 
 
 def gas_overdue(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:

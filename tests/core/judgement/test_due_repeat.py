@@ -6,7 +6,7 @@ Source: common practice (30-60 min after a severe, worse or not better gas), bes
 
 import pytest
 
-from tests.support.flag_cases import BEFORE, COPD, LUNG, START, clock, due, met
+from tests.support.flag_cases import BEFORE, COPD, LUNG, START, clock, due, flags, met
 
 BASE = COPD + BEFORE + START
 GAS_TYPES = ("gas", "repeat_gas")
@@ -90,3 +90,12 @@ def test_fio2_up_by_010_in_hypoxaemic_failure_asks_for_a_gas():
     assert pending(first + "02:30 fio2 0.5", "02:40") == [("gas", "03:00", "04:30", "open", "due.gas_after_change")]
     enough = first.replace("pao2 62", "pao2 130")
     assert pending(enough + "02:30 fio2 0.5", "02:40") == []
+
+
+def test_the_overdue_flag_names_the_item_that_it_stands_since():
+    """Two gases overdue at once: the head's moment is the first one's, so the evidence begins with that one."""
+    log = BASE + "02:00 ph 7.22 paco2 70\n02:10 ipap 22\n"
+    (flag,) = [f for f in flags(log, "04:20") if f.marker == "gas_overdue"]
+    named = [(m.values["what"], clock(m.values["until"])) for m in flag.evidence]
+    assert named == [("repeat_gas", "03:00"), ("gas", "04:10")]
+    assert clock(flag.since) == "03:00"
