@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from textwrap import fill
 
-from app.formats import plain
+from app.formats import ABSENT, plain
 from app.sheet.gas_table import GasRow
 from app.sheet.shapes import EpisodePage, FlagLine, SheetContent, WardPage, WardRow
 
@@ -77,10 +77,10 @@ def _episode(page: EpisodePage, unit: str) -> Iterator[str]:
     for item in page.due or ("Nothing is due.",):
         yield from _wrapped(item, "  ")
     yield from ("", "Plan and care")
-    told = "; ".join(page.told) or "nobody recorded as told"
+    told = "; ".join(page.told) or ABSENT
     for name, value in (("Plan", page.plan), ("Jobs not done", page.jobs), ("Told", told), *page.care):
         yield from _wrapped(f"{name}: {value}", "  ")
-    yield from ("", "Remark", *_wrapped(page.remark or "none", "  "))
+    yield from ("", "Remark", *_wrapped(page.remark or ABSENT, "  "))
     if page.to_check:
         yield from ("", "To check")
         for item in page.to_check:

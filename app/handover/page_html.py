@@ -115,7 +115,7 @@ class _Writer:
         yield self.text(translate("handover", "Jobs: {jobs}").format(jobs=page.jobs))
         yield self.text(
             translate("handover", "Remark: {remark}").format(
-                remark=page.remark or translate("handover", "none yet. Type 'handover remark ...' on the log strip.")
+                remark=page.remark or translate("handover", "not recorded. Type 'handover remark ...' on the log strip.")
             )
         )
         yield from (self.quiet(line) for line in page.to_check)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
 
+from app.formats import ABSENT
 from app.sheet.blocks import (
     Block,
     Column,
@@ -152,7 +153,7 @@ def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
     yield Heading("Due in the next 4 h")
     yield from [Text(d) for d in page.due] or [Text("Nothing is due.")]
     yield Heading("Plan and care")
-    told = "; ".join(page.told) or "nobody recorded as told"
+    told = "; ".join(page.told) or ABSENT
     yield Facts((("Plan", page.plan), ("Jobs not done", page.jobs), ("Told", told), *page.care), 2)
     if page.to_check:
         yield Heading("To check", _left_out(page.left_out_checks, "more"))
@@ -201,7 +202,7 @@ def draw_episode(fitted: Fitted, press: Press, x: float, y: float, bottom: float
     y = draw_all(fitted.upper, at, x, y, width)
     fitted.chart.draw(at, x, y, width)
     y = draw_all(fitted.lower, at, x, y + fitted.chart.high, width)
-    heading = Heading("Remark", "" if fitted.remark.words else "none typed; room to write by hand")
+    heading = Heading("Remark", "" if fitted.remark.words else "not recorded; room to write by hand")
     heading.draw(at, x, y, width)
     y += heading.height(at, width)
     top_of_signatures = bottom - room.signed.height(at, width)
