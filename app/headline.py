@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from app.formats import clock, gas_pressure
 from app.phrases import state_of, translate
 from app.theme import Verdict, state_word, verdict_of, verdict_word
+from app.words.verdict_loss import LOST_SINCE, with_loss
 from core.judgement.now import headline_response
 from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
 
@@ -24,10 +25,14 @@ class Headline:
     verdict: Verdict
     gain_lost: bool = False
     since_start: Verdict | None = None
+    lost_later: bool = False
+    """Whether a newer gas than the verdict's lost the gain: then nothing says that it is still better."""
 
     @property
     def word(self) -> str:
-        """The verdict, and whether a gain was lost: better, gain lost."""
+        """The verdict, and whether a gain was lost, which comes first: gain lost, still better."""
+        if self.gain_lost and self.lost_later and self.verdict is Verdict.BETTER:
+            return translate("headline", LOST_SINCE)
         return verdict_with_loss(self.verdict, lost=self.gain_lost)
 
     @property
@@ -50,10 +55,11 @@ def headline(f: EpisodeFigures) -> Headline | None:
     if told is None:
         return None
     judged = judged_by(told)
-    lost = told.gain_lost or f.now.gain_lost or f.now.since_start_gain_lost
+    lost = lost_gain(told) or f.now.gain_lost
+    later = f.now.since_start_gain_lost and not lost
     against = f.now.since_start or (judged.since_start.verdict if judged is not None else None)
-    lost = lost or (judged is not None and judged.since_start.gain_lost)
-    return Headline(verdict_of(told.headline), lost, verdict_of(against) if against is not None else None)
+    since = verdict_of(against) if against is not None else None
+    return Headline(verdict_of(told.headline), lost or later, since, later)
 
 
 def verdict_sentences(f: EpisodeFigures) -> tuple[str, ...]:
@@ -87,9 +93,8 @@ def lost_gain(response: ResponseFigure) -> bool:
 
 
 def verdict_with_loss(verdict: Verdict, *, lost: bool) -> str:
-    """A verdict in words, with the gain that was lost."""
-    word = verdict_word(verdict)
-    return translate("headline", "{verdict}, gain lost").format(verdict=word) if lost else word
+    """A verdict in words, the gain that was lost before a better."""
+    return translate("headline", with_loss(verdict.value, lost=True)) if lost else verdict_word(verdict)
 
 
 def sign_of(verdict: Verdict, *, lost: bool, since_start: Verdict | None = None) -> Verdict:

@@ -8,7 +8,7 @@ from math import ceil, floor
 
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
 from app.formats import fixed, gas_pressure, signed, trimmed, wall
-from app.headline import gas_state_word, judged_sign, verdict_with_loss
+from app.headline import gas_state_word, judged_sign, since_start_words, verdict_with_loss
 from app.phrases import gas_name, gas_words, ph_word, state_of, translate, verdict_or_none
 from app.tables import Table
 from app.ward.lane_words import anchor_name
@@ -106,7 +106,7 @@ def response_words(p: PathGas, reader: Reader) -> str:
     if p.judged.delta_paco2_mmHg is not None:
         deltas.append(f"PaCO2 {gas_pressure(p.judged.delta_paco2_mmHg, reader.gas_unit, sign=True)}")
     told = translate("map", "{verdict} after {anchor}").format(verdict=word, anchor=anchor_name(p.response))
-    return f"{told} ({', '.join(deltas)})" if deltas else told
+    return (f"{told} ({', '.join(deltas)})" if deltas else told) + since_start_words(p.judged)
 
 
 def summary(figures: EpisodeFigures, reader: Reader) -> str:

@@ -12,10 +12,11 @@ from app.headline import headline, off_mask_word, state_now
 from app.theme import verdict_word
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
+from app.words.verdict_loss import with_loss
 from core.judgement.shapes import EpisodeFigures, ResponseFigure
 from core.record.channels import CHANNELS, Kind
 
-_HIDDEN = frozenset({"label", "plan", "jobs", "handover_remark"})
+_HIDDEN = frozenset({"label", "plan", "agreed_with", "breaks_and_night", "jobs", "handover_remark"})
 
 
 def episode_text(figures: EpisodeFigures, reader: Reader) -> str:
@@ -131,7 +132,7 @@ def _response(r: ResponseFigure, lines: FigureLines) -> Iterator[str]:
                  f"P/F {lines.pressure(r.baseline_pf_mmHg)}" if r.baseline_pf_mmHg is not None else ""]  # fmt: skip
         yield f"  baseline {formats.wall(r.baseline_at, lines.reader.zone)}: {', '.join(p for p in parts if p)}"
     for g in r.gases:
-        verdict = g.verdict or "not judged"
+        verdict = with_loss(g.verdict or "not judged", lost=g.since_start.gain_lost)
         yield f"  {formats.wall(g.at, lines.reader.zone)} {verdict}: {lines.deltas(g)}"
         for also in g.also_changed:
             yield f"    in between: {formats.clock(also.at, lines.reader.zone)} {lines.step(also)}"
@@ -139,8 +140,7 @@ def _response(r: ResponseFigure, lines: FigureLines) -> Iterator[str]:
             yield f"    {lines.sentences(g.why)}"
         since = g.since_start
         if since.verdict:
-            lost = ", gain lost" if since.gain_lost else ""
-            yield f"    since the start: {since.verdict}{lost}"
+            yield f"    since the start: {with_loss(since.verdict, lost=since.gain_lost)}"
 
 
 def _levers(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:

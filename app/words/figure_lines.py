@@ -8,6 +8,7 @@ from dataclasses import dataclass, replace
 from app import formats
 from app.words import Reader, sentence
 from app.words.template import quantity_name
+from app.words.verdict_loss import with_loss
 from core.judgement.shapes import (
     DueFigure,
     EpisodeFigures,
@@ -208,9 +209,7 @@ class FigureLines:
     def headline(self, r: ResponseFigure, judged: JudgedGas) -> str:
         """The verdict with a gain that was lost, and the verdict since the start where it is another."""
         since = judged.since_start
-        text = self.tr(r.headline)
-        if r.gain_lost or since.gain_lost:
-            text += f", {self.tr('gain lost')}"
+        text = self.tr(with_loss(r.headline, lost=r.gain_lost or since.gain_lost))
         if since.verdict is not None and since.verdict != r.headline:
             text += f" ({self.tr('since the start')}: {self.tr(since.verdict)})"
         return text

@@ -6,7 +6,7 @@ import pytest
 
 from app.headline import Headline, gas_state_word, headline, off_mask_word, sign_of, state_now
 from app.theme import Verdict
-from core.judgement.shapes import EpisodeFigures, GasFigure, NowFigure, ResponseFigure, SupportFigure
+from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, NowFigure, ResponseFigure, SupportFigure
 from tests.support.sample_ward import sample_ward
 
 
@@ -17,7 +17,7 @@ def bed(label: str) -> EpisodeFigures:
 @pytest.mark.parametrize(
     ("label", "short", "sign"),
     [
-        ("Bed 5", "better, gain lost", Verdict.MIXED),
+        ("Bed 5", "gain lost, still better", Verdict.MIXED),
         ("Bed 4", "no clear change, worse since start", Verdict.WORSE),
         ("Bed 2", "no clear change, better since start", Verdict.NO_CLEAR_CHANGE),
         ("Bay A 1", "worse, gain lost", Verdict.WORSE),
@@ -28,6 +28,21 @@ def test_the_sample_night(label: str, short: str, sign: Verdict) -> None:
     told = headline(bed(label))
     assert told is not None
     assert (told.short, told.sign) == (short, sign)
+
+
+@pytest.mark.parametrize("verdict", [Verdict.BETTER, Verdict.NO_CLEAR_CHANGE, Verdict.MIXED])
+def test_a_lost_gain_is_the_first_word(verdict: Verdict) -> None:
+    assert Headline(verdict, gain_lost=True).short.startswith("gain lost")
+    assert Headline(Verdict.WORSE, gain_lost=True).short == "worse, gain lost"
+
+
+def test_a_gain_that_a_newer_gas_lost_is_not_called_still_better() -> None:
+    judged = JudgedGas(5, 60.0, "in_window", verdict="better")
+    told = ResponseFigure(1, "start", 1, headline="better", headline_gas_at=5, gases=(judged,))
+    relapsed = EpisodeFigures("E", 9, responses=(told,), now=NowFigure(since_start_gain_lost=True))
+    found = headline(relapsed)
+    assert found is not None
+    assert (found.word, found.sign) == ("gain lost since, was better", Verdict.MIXED)
 
 
 def test_no_sign_of_better_stands_over_a_relapse() -> None:

@@ -2,13 +2,14 @@
 
 import pytest
 
-from app.map_words import gas_sentence, map_spec, map_table, steps_of, summary, titled_spec
+from app.map_words import gas_sentence, map_spec, map_table, response_words, steps_of, summary, titled_spec
 from app.theme import GasState
 from app.words import Reader
 from core.figures.episode_figures import episode_figures
 from core.figures.gas_path import gas_path
 from core.judgement.policy import shipped_policy
 from tests.support.log import episode, moment
+from tests.support.sample_ward import sample_ward
 
 LOG = """
 -21:00 ph 7.22 paco2 80 site arterial
@@ -42,6 +43,13 @@ def test_class_and_reasoning_are_told_and_none_for_venous():
 def test_the_response_of_a_gas_is_told_with_its_differences():
     second = gas_path(FIGURES).gases[1]
     assert "better after the start of support (pH +0.05" in gas_sentence(second, READER)
+
+
+def test_a_response_on_the_map_never_goes_without_the_sum_since_the_start():
+    worse = next(f for f in sample_ward() if f.label == "Bed 4")
+    last = gas_path(worse).gases[-1]
+    assert "no clear change after" in response_words(last, READER)
+    assert response_words(last, READER).endswith("; since the start: worse")
 
 
 def test_summary_and_table_hold_every_gas_also_those_that_cannot_be_placed():

@@ -39,7 +39,7 @@ def titles(texts: list[list[str]]) -> list[str]:
 
 
 def test_a_lost_gain_stands_with_the_verdict(told):
-    assert "better, gain lost" in titles(told(bed("Bed 5")))
+    assert "gain lost, still better" in titles(told(bed("Bed 5")))
 
 
 @pytest.mark.parametrize(("label", "against"), [("Bed 4", "worse"), ("Bed 2", "better")])

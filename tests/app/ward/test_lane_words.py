@@ -104,11 +104,11 @@ def test_off_the_mask_stands_in_the_place_of_the_state_and_dims_the_settings():
 def test_a_gain_that_was_lost_stands_beside_better_and_in_the_mark_of_its_gas():
     bed = next(f for f in sample_ward() if f.label == "Bed 5")
     lane = WORDS.lane(OnWard(bed, course_of(failing().record, NOW)), first=False)
-    assert (lane.verdict_word, lane.verdict) == ("better, gain lost", Verdict.MIXED)
-    assert "better, gain lost. since the start: better" in lane.sentence
+    assert (lane.verdict_word, lane.verdict) == ("gain lost, still better", Verdict.MIXED)
+    assert "gain lost, still better. since the start: better" in lane.sentence
     gas = items(lane, LaneKind.GAS)[-1]
     assert gas.verdict is Verdict.MIXED
-    assert "better, gain lost, " in gas.sentence
+    assert "gain lost, still better, " in gas.sentence
     assert gas.sentence.endswith("since the start: better")
 
 
