@@ -16,7 +16,7 @@ class EndForm(EntryForm):
     """Records that support stopped and why; a restart within two days goes on in the same episode."""
 
     def build(self) -> None:
-        self.set_name(self.tr("End support"))
+        self.set_name(self.tr("Log the end of support"))
         words = {
             "weaned": self.tr("weaned"), "escalated": self.tr("escalated"), "ceiling": self.tr("ceiling reached"),
             "transferred": self.tr("transferred"), "died": self.tr("died"),
@@ -29,8 +29,8 @@ class EndForm(EntryForm):
         self.remark.textEdited.connect(self.edited)
         card = self.card(
             "",
-            self.tr("Support stops at the moment above. If it starts again within two days the episode goes on, "
-                    "and nothing is lost."),
+            self.tr("Records only: the ventilator is not changed. Support stopped at the moment above; if it "
+                    "starts again within two days the episode goes on, and nothing is lost."),
         )  # fmt: skip
         card.add_line(Cell(channel_name("end_reason"), self.reason, self.theme, width=0, noted=False))
         card.add_line(Cell(self.tr("Remark"), self.remark, self.theme, width=0, noted=False))

@@ -27,7 +27,7 @@ class SettingsForm(EntryForm):
     """Shows pressure support before and after, and what the change can act on."""
 
     def build(self) -> None:
-        self.set_name(self.tr("Change settings"))
+        self.set_name(self.tr("Log a settings change"))
         self.mode, self.interface = QuietChooser(), QuietChooser()
         self.fields: dict[str, NumberField] = {}
         self.cells: dict[str, Cell] = {}
@@ -45,7 +45,7 @@ class SettingsForm(EntryForm):
         self.first = self.fields["cpap" if self.before.is_cpap else "ipap"].box
 
     def _build_pressures(self) -> None:
-        card = self.card()
+        card = self.card("", self.tr("Records only: the ventilator is not changed."))
         self.mode.addItem(self.tr("not recorded"), "")
         for mode in MODES:
             self.mode.addItem(mode, mode)

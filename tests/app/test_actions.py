@@ -55,3 +55,10 @@ def test_the_list_finds_by_name_help_and_key():
     assert "undo" in [d.key for d in found(keys_of(next(d for d in DEEDS if d.key == "undo")))]
     assert found("no such thing at all") == ()
     assert len(found("")) == len(DEEDS)
+
+
+@pytest.mark.parametrize("key", ["settings_form", "end_episode"])
+def test_no_name_reads_as_if_the_ventilator_obeyed(key):
+    """What a person does at the bed is logged here, nothing is set or stopped by it."""
+    (deed,) = [d for d in DEEDS if d.key == key]
+    assert name_of(deed).startswith("Log ")

@@ -2,7 +2,7 @@
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QAbstractButton, QWidget
+from PySide6.QtWidgets import QAbstractButton, QLabel, QWidget
 
 from app.forms.end_form import EndForm
 from app.forms.gas_form import GasForm
@@ -69,6 +69,17 @@ def test_a_change_of_settings_by_keys_is_shown_recorded_and_undone(qtbot, window
     until(qtbot, window.pages.ward.lanes.hasFocus)
     qtbot.keyClick(window.pages.ward.lanes, Key.Key_Z, Mod.ControlModifier)
     until(qtbot, lambda: record(window).number("ipap").v[-1] == 18)
+
+
+@pytest.mark.parametrize(
+    ("key", "kind", "modifier"),
+    [(Key.Key_F10, SettingsForm, Mod.NoModifier), (Key.Key_W, EndForm, Mod.ControlModifier)],
+)
+def test_a_form_that_could_be_taken_for_a_control_says_that_it_only_records(qtbot, window, key, kind, modifier):
+    form = opened(qtbot, window, key, kind, modifier)
+    said = [x.text() for x in form.findChildren(QLabel) if x.isVisible()]
+    assert any(text.startswith("Records only: the ventilator is not changed.") for text in said)
+    qtbot.keyClick(form, Key.Key_Escape)
 
 
 def test_buttons_do_what_arrow_keys_do_and_the_wheel_does_nothing(qtbot, window):
