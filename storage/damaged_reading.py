@@ -1,51 +1,70 @@
-"""Reading a damaged store for what is left: every row that can be read, found by halves around those that cannot."""
+"""Reading a damaged store for what is left: by the driver where the file's structure is whole, else leaf by leaf."""
 
 from __future__ import annotations
 
 import heapq
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
 import sqlalchemy as sa
 
+from storage import keys, opening
 from storage import schema as s
+from storage.damaged_pages import Pages
 from storage.engine import driver_errors, raw_connection
-from storage.errors import store_error, translated
+from storage.errors import StoreError, store_error
+from storage.leaf_rows import LeafRows, Row, is_sound
 
-Row = dict[str, Any]
-_PAGE = 512
-_LEAST_ROW_BYTES = 20
+
+def key_of(path: Path, passphrase: str | None) -> bytes | None:
+    """The key of a store whose first page may be lost: what has no key file and holds our rows is a plain store.
+
+    Raises:
+        StoreError: as `opening.data_key`.
+    """
+    try:
+        return opening.data_key(path, passphrase)
+    except StoreError:
+        if keys.envelope_path(path).exists():
+            raise
+        pages = Pages(path, None)
+        try:
+            if any(LeafRows(pages).numbers()):
+                return None
+        finally:
+            pages.close()
+        raise
 
 
 class DamagedLedger:
     """A store's file opened for reading whatever can be read. Close it."""
 
     def __init__(self, path: Path, key: bytes | None) -> None:
-        self.path, self._key = path, key
-        self._connection = _opened(path, key)
-        self.top_is_known = True
-        """Whether every table told its last row; else there may have been more."""
+        self.path = path
+        self._connection = _sound_connection(path, key)
+        self._pages = Pages(path, key) if self._connection is None else None
+        self._leaves = LeafRows(self._pages) if self._pages is not None else None
+        if self._leaves is not None and not any(self._leaves.numbers()) and not any(self._leaves.rows(s.batch)):
+            self.close()
+            raise store_error("store.damaged", path=path.name, detail="no row can be read")
+        self.proved = key is not None and (self._pages is None or self._pages.proved)
+        """Whether each row that can be read is what was written."""
+        self.tail_is_known = self._leaves is None or not self._leaves.lost_pages
+        """Whether nothing more may have been recorded: no page is lost."""
         self.top = self._top()
+        """The largest sequence that is known to have been."""
 
     def close(self) -> None:
         """Close the file."""
-        self._connection.close()
+        if self._connection is not None:
+            self._connection.close()
+        if self._pages is not None:
+            self._pages.close()
 
     def facts(self) -> dict[str, str]:
         """The store's own facts, as far as they can be read."""
-        found = self._ask("SELECT key, value FROM store_facts")
-        return {str(k): str(v) for k, v in found or ()}
-
-    def _ask(self, query: str, values: tuple[int, ...] = ()) -> list[Any] | None:
-        """What a query gives; None where a page fails. The driver answers nothing more over a connection that met a
-        bad page, so the next question gets a new one."""
-        try:
-            return list(self._connection.execute(query, values).fetchall())
-        except driver_errors():
-            self._connection.close()
-            self._connection = _opened(self.path, self._key)
-            return None
+        return {row["key"]: row["value"] for row in self.kept(s.store_facts)}
 
     def headers(self) -> dict[int, Row]:
         """The batches that can be read, by number."""
@@ -62,84 +81,66 @@ class DamagedLedger:
             yield name, row
 
     def kept(self, table: sa.Table) -> list[Row]:
-        """The rows of a table outside the ledger; none where it cannot be read to its end."""
-        names = [c.name for c in table.columns]
-        found = self._ask(f'SELECT {_list(names)} FROM "{table.name}"')
-        return [dict(zip(names, row, strict=True)) for row in found or ()]
+        """The rows of a table outside the ledger."""
+        if self._leaves is not None:
+            return self._leaves.kept(table)
+        return [row for row in self._selected(table, "1") if is_sound(table, row)]
 
     def _rows(self, table: sa.Table) -> Iterator[Row]:
-        start = 1
-        while start <= self.top:
-            yield from self._between(table, start, min(start + _PAGE - 1, self.top))
-            start += _PAGE
+        if self._leaves is not None:
+            return self._leaves.rows(table)
+        return (row for row in self._selected(table, "seq") if is_sound(table, row))
 
-    def _between(self, table: sa.Table, low: int, high: int) -> Iterator[Row]:
-        """Rows from `low` to `high`; where reading fails, each half alone, down to the one row that is lost."""
+    def _selected(self, table: sa.Table, order: str) -> Iterator[Row]:
+        assert self._connection is not None
         names = [c.name for c in table.columns]
-        query = f'SELECT {_list(names)} FROM "{table.name}" WHERE seq BETWEEN ? AND ? ORDER BY seq'
-        found = self._ask(query, (low, high))
-        if found is None:
-            if low == high:
-                return
-            middle = (low + high) // 2
-            yield from self._between(table, low, middle)
-            yield from self._between(table, middle + 1, high)
-            return
-        for row in found:
-            made = dict(zip(names, row, strict=True))
-            if _is_sound(table, made):
-                yield made
+        columns = ", ".join(f'"{n}"' for n in names)
+        for row in self._connection.execute(f'SELECT {columns} FROM "{table.name}" ORDER BY {order}'):
+            yield dict(zip(names, row, strict=True))
 
     def _top(self) -> int:
-        """The largest sequence there may be: the largest that any table can tell, else what the file could hold."""
-        tops: list[int] = []
-        asked = [("last_seq", s.batch.name), *(("seq", t.name) for t in s.LEDGER_ROWS)]
-        for column, table in asked:
-            found = self._ask(f'SELECT max("{column}") FROM "{table}"')
-            if found and isinstance(found[0][0], int):
-                tops.append(found[0][0])
-            elif found is None:
-                self.top_is_known = False
-        most = self.path.stat().st_size // _LEAST_ROW_BYTES
-        return min(max(tops), most) if tops else 0 if self.top_is_known else most
+        tops = [row["last_seq"] for row in self._rows(s.batch)]
+        if self._leaves is not None:
+            tops += self._leaves.numbers()
+        elif self._connection is not None:
+            asked = (f'SELECT max(seq) FROM "{t.name}"' for t in s.LEDGER_ROWS)
+            tops += [self._connection.execute(query).fetchone()[0] or 0 for query in asked]
+        return min(max(tops, default=0), self.path.stat().st_size // _LEAST_ROW_BYTES + 1)
 
 
-def _list(names: list[str]) -> str:
-    return ", ".join(f'"{n}"' for n in names)
+_LEAST_ROW_BYTES = 20
 
 
-def _is_sound(table: sa.Table, row: Mapping[str, Any]) -> bool:
-    """Whether every value is of the kind its column holds: damage in a plain file can leave others."""
-    for column in table.columns:
-        value, kind = row[column.name], column.type.python_type
-        if value is None:
-            if not column.nullable:
-                return False
-        elif kind is float:
-            if not isinstance(value, float | int):
-                return False
-        elif not isinstance(value, kind):
-            return False
-    return True
+def _sound_connection(path: Path, key: bytes | None) -> Any | None:
+    """A connection to a file whose structure is whole; None where it is not.
 
-
-def _opened(path: Path, key: bytes | None) -> Any:
-    """A connection that can read at least the schema; its journal is left out where it stands in the way."""
-    failed: BaseException | None = None
-    for mode in ("ro", "immutable"):
-        connection = None
-        try:
-            connection = raw_connection(path, key, mode=mode)
-            query = "SELECT count(*) FROM sqlite_master WHERE name IN ('batch', 'entry')"
-            ours = connection.execute(query).fetchone()[0] == 2
-        except driver_errors() as error:
-            failed = failed or error
-            if connection is not None:
-                connection.close()
-        else:
-            if ours:
-                return connection
+    Raises:
+        StoreError: `store.not_a_store` where it is whole and none of ours.
+    """
+    connection = None
+    try:
+        connection = raw_connection(path, key, mode="ro")
+        tables = {row[0] for row in connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'")}
+        if connection.execute("PRAGMA quick_check(1)").fetchone()[0] == "ok":
+            if not {s.batch.name, s.entry.name} <= tables:
+                raise store_error("store.not_a_store", path=path.name)
+            for table in (*s.APPEND_ONLY, s.store_facts, s.layout, s.draft):
+                _read_texts(connection, table)
+            return connection
+    except driver_errors():
+        pass  # then it is read leaf by leaf
+    except StoreError:
+        if connection is not None:
             connection.close()
-            raise store_error("store.not_a_store", path=path.name)
-    assert failed is not None
-    raise translated(failed, path) from failed
+        raise
+    if connection is not None:
+        connection.close()
+    return None
+
+
+def _read_texts(connection: Any, table: sa.Table) -> None:
+    """Read every text of a table: the driver stops at one that is no text, and would hide the rows behind it."""
+    columns = ", ".join(f'"{c.name}"' for c in table.columns if c.type.python_type is str)
+    if columns:
+        for _row in connection.execute(f'SELECT {columns} FROM "{table.name}"'):
+            pass

@@ -21,9 +21,10 @@ from storage import keys, opening, redraft, rules, settings_kept
 from storage import schema as s
 from storage.chain import batch_hash, row_digest, rows_digest
 from storage.chunks import decode
-from storage.damaged_reading import DamagedLedger, Row
+from storage.damaged_reading import DamagedLedger, key_of
 from storage.draft_batch import DraftBatch, DraftChunk, DraftEntry, SourceFacts
 from storage.errors import StoreError, store_error
+from storage.leaf_rows import Row
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -40,7 +41,7 @@ class Salvaged:
 
     `doubtful` entries were kept and marked; `unlinked` lost what they replaced; `withdrawals_lost` took back an entry
     that is lost too; `removed` were removed on purpose before. `lost_at` are the recording times of the batches that
-    lost rows, first and last. `tail_unknown`: a table does not tell its last row, so more may have followed.
+    lost rows, first and last. `tail_unknown`: a page is lost, so more may have been recorded than is known of.
     """
 
     new: Path
@@ -66,14 +67,14 @@ def salvage(
     """Save what can be read of a damaged store into a new one, encrypted by the same passphrase. `old` is only read.
 
     Raises:
-        StoreError: `store.missing`, `store.exists`, `key.*`, or `store.damaged` where not even its first page can be
-            read: then only a backup helps.
+        StoreError: `store.missing`, `store.exists`, `key.*`, or `store.damaged` where no row can be read: then only a
+            backup helps.
     """
     from storage.store import Store
 
     if not old.is_file():
         raise store_error("store.missing", path=old.name)
-    key = opening.data_key(old, passphrase)
+    key = key_of(old, passphrase)
     ledger = DamagedLedger(old, key)
     try:
         facts = ledger.facts()
@@ -81,7 +82,7 @@ def salvage(
                             cost=cost)  # fmt: skip
         try:
             with made:
-                found = _Salvage(ledger, proved=key is not None).into(made)
+                found = _Salvage(ledger).into(made)
                 found.recovery_code = made.recovery_code or ""
                 detail = {"from": facts.get("store_id", ""), "entries": found.entries, "lost_rows": found.lost_rows,
                           "lost_batches": found.lost_batches, "doubtful": found.doubtful}  # fmt: skip
@@ -95,10 +96,10 @@ def salvage(
 
 
 class _Salvage:
-    """One pass over a damaged ledger. `proved`: whatever can be read is what was written."""
+    """One pass over a damaged ledger."""
 
-    def __init__(self, ledger: DamagedLedger, *, proved: bool) -> None:
-        self._ledger, self._proved = ledger, proved
+    def __init__(self, ledger: DamagedLedger) -> None:
+        self._ledger, self._proved = ledger, ledger.proved
         self._headers = ledger.headers()
         self._known: dict[str, rules.Replaced] = {}
         self._sources: dict[int, str] = {}
@@ -236,11 +237,11 @@ class _Salvage:
 
     def _count_lost(self) -> None:
         """Rows that batches say were there and that no table gave, and batches that lost any."""
-        if not self._seen and (self._ledger.top or not self._ledger.top_is_known):
+        if not self._seen and (self._ledger.top or not self._ledger.tail_is_known):
             raise store_error("store.damaged", path=self._ledger.path.name, detail="no row can be read")
         gone = self._ledger.top - sum(n <= self._ledger.top for n in self._seen | self._erased.keys())
         self._found.lost_rows += gone
-        self._found.tail_unknown = not self._ledger.top_is_known
+        self._found.tail_unknown = not self._ledger.tail_is_known
         times: list[Instant] = []
         for header in self._headers.values():
             count = header["last_seq"] - header["first_seq"] + 1

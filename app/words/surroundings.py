@@ -32,7 +32,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "file.not_allowed": "{path} may not be opened or written by you. Choose another place or ask who owns it.",
     "file.read_only_disk": "{path} lies on a disk that takes no writing. Choose another place.",
     "file.too_large": "The file is too large. Accepted: {accepted}.",
+    "file.exists": "{path} exists already. Name another file, or say --replace.",
     "handover.backwards": "The shift ends ({end:time}) before it starts ({start:time}).",
+    "handover.not_begun": "The shift that begins {start:time} has not begun by {now:time}.",
     "handover.paper": "'{paper}' is no paper. Accepted: {accepted}.",
     "handover.too_long": "A shift of {hours:0} h is too long: at most {accepted} h are accepted.",
     "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
@@ -56,7 +58,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "salvage.rows_lost": "{count:0} row(s) were lost: they cannot be read, or make no sense.",
     "salvage.saved": "Saved: {entries:0} entries of {episodes:0} episode(s), {samples:0} device samples, {others:0} "
         "documents, policies and events.",
-    "salvage.tail_unknown": "The last page cannot be read: more may have been recorded after what was saved.",
+    "salvage.tail_unknown": "A page cannot be read: more may have been recorded than is known of.",
     "salvage.unlinked": "{count:0} correction(s) or move(s) lost what they replaced and stand on their own.",
     "salvage.withdrawals_lost": "{count:0} withdrawal(s) were left out: what they took back is lost too.",
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
