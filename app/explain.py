@@ -14,6 +14,7 @@ from app.figure_rows import doubts_of
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
 from app.headline import lost_gain, verdict_with_loss
+from app.lever_words import lever_standing, without_decides
 from app.phrases import gas_name, gas_words
 from app.theme import Tier, tier_word, verdict_of
 from app.words import Reader, sentence
@@ -219,20 +220,22 @@ class Explainer:
 
     def lever(self, lever: LeverFigure) -> Explanation:
         """A lever: why it could act or not, and what limits it."""
-        texts = (*lever.why, *((lever.present,) if lever.present is not None else ()), *lever.limits)
+        present = (lever.present,) if lever.present is not None else ()
+        texts = (*lever.why, *present, *without_decides(lever.limits))
         note = translate("explain", "A qualified person decides.")
         return Explanation(
             lever_name(lever.key, self.reader), tuple(sentence(m, self.reader) for m in texts), (), (note,)
         )
 
-    def levers_without_effect(self, levers: Sequence[LeverFigure]) -> Explanation:
-        """Levers that cannot act now, each with its reason."""
+    def idle_levers(self, levers: Sequence[LeverFigure]) -> Explanation:
+        """Levers that could not act now, each with its reason: no need seen, not known, or no effect."""
         told = []
         for lever in levers:
             why = " ".join(sentence(m, self.reader) for m in lever.why)
-            told.append(f"{lever_name(lever.key, self.reader)}: {why}")
+            told.append(f"{lever_name(lever.key, self.reader)}: {lever_standing(lever, self.reader)}. {why}")
         note = translate("explain", "A qualified person decides.")
-        return Explanation(translate("explain", "What cannot act now"), tuple(told), (), (note,))
+        title = translate("explain", "Levers with no need seen, not known or without effect")
+        return Explanation(title, tuple(told), (), (note,))
 
     def _values(self, ph: float | None, paco2: float | None) -> str:
         parts = [f"pH {fixed(ph, 2)}"] if ph is not None else []

@@ -17,7 +17,7 @@ class Fact(QFrame):
     """One fact. Enter or Space unfolds what stands under it; F2, ?, a double click or "Why" explains it.
 
     `value` stands at the right of the title, or below it where it is a sentence; `marks` are doubts, told as
-    strongly as the value.
+    strongly as the value. `large`: what is to be seen first.
     """
 
     explain_wanted = Signal(object)
@@ -37,6 +37,7 @@ class Fact(QFrame):
         value: str = "",
         value_below: bool = False,
         marks: Sequence[str] = (),
+        large: bool = False,
     ) -> None:
         super().__init__()
         self.explanation, self.payload = explanation, payload
@@ -52,7 +53,7 @@ class Fact(QFrame):
         words = QVBoxLayout()
         words.setSpacing(theme.px(1))
         self._has_value = bool(value) and not value_below
-        self._title = _label(title, "quiet" if quiet else "strong")
+        self._title = _label(title, "quiet" if quiet else "emphasis" if large else "strong")
         words.addLayout(_head(theme, self._title, "" if value_below else value))
         if value and value_below:
             words.addWidget(_label(value, "strong"))

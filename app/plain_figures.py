@@ -9,6 +9,7 @@ from app.figure_groups import EXPECTED, figure_groups
 from app.figure_rows import FigureGroup, FigureRow
 from app.finding_names import lever_name
 from app.headline import headline, off_mask_word, state_now
+from app.lever_words import lever_reasons, lever_standing
 from app.theme import verdict_word
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
@@ -145,5 +146,5 @@ def _response(r: ResponseFigure, lines: FigureLines) -> Iterator[str]:
 
 def _levers(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
     for lever in f.levers:
-        can = "can act" if lever.can_act else "cannot act"
-        yield f"{lever_name(lever.key, lines.reader)}: {can}. {lines.sentences((*lever.why, *lever.limits))}".rstrip()
+        said = " ".join(lever_reasons(lever, lines.reader))
+        yield f"{lever_name(lever.key, lines.reader)}: {lever_standing(lever, lines.reader)}. {said}".rstrip()

@@ -21,6 +21,7 @@ from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, hours, minutes, since, trimmed
 from app.headline import Headline, ever_acidotic, gas_state_word, headline, off_mask_word, pf_word, sign_of
+from app.lever_words import lever_reasons, lever_standing
 from app.phrases import gas_words, state_of, support_now, translate
 from app.signs import Sign
 from app.theme import Theme, Tier, Verdict, tier_word, verdict_word
@@ -142,7 +143,7 @@ class _Facts:
         yield translate("side", "Due"), due if done is None else (*due, done)
         levers = tuple(self._levers())
         if levers:
-            yield translate("side", "What could act"), levers
+            yield translate("side", "What could act: a qualified person decides"), levers
         scores = tuple(self._scores())
         if scores:
             yield translate("side", "Scores"), scores
@@ -164,6 +165,7 @@ class _Facts:
                 self._state(gas),
                 (gas_words(gas, self.reader.gas_unit), f"{clock(gas.at, zone)}, {age}"),
                 sign=Sign(self.theme, state_of(gas.state)),
+                large=True,
                 explanation=self.explainer.gas(gas),
             )
         response, told = headline_response(f.responses), headline(f)
@@ -191,7 +193,7 @@ class _Facts:
         """As strong as the headline: steps too small to tell may add up."""
         title = translate("side", "since the start: {verdict}").format(verdict=verdict_word(against))
         sign = Sign(self.theme, against)
-        return Fact(self.theme, title, sign=sign, explanation=self.explainer.response(response))
+        return Fact(self.theme, title, sign=sign, large=True, explanation=self.explainer.response(response))
 
     def _hours(self) -> Explanation:
         """How the hours on the mask were counted."""
@@ -210,6 +212,7 @@ class _Facts:
             told.word,
             lines,
             sign=Sign(self.theme, sign_of(told.verdict, lost=told.gain_lost)),
+            large=True,
             explanation=self.explainer.response(response),
         )
 
@@ -307,21 +310,23 @@ class _Facts:
 
     def _levers(self) -> Iterator[Fact]:
         for lever in (x for x in self.f.levers if x.can_act):
-            lines = [sentence(m, self.reader) for m in (*lever.why, *lever.limits)]
+            lines = lever_reasons(lever, self.reader)
             yield Fact(self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever))
         idle = [x for x in self.f.levers if not x.can_act]
         if idle:
             folded = [
-                f"{lever_name(x.key, self.reader)}: {' '.join(sentence(m, self.reader) for m in x.why)}" for x in idle
+                f"{lever_name(x.key, self.reader)}: {lever_standing(x, self.reader)}. "
+                f"{' '.join(sentence(m, self.reader) for m in x.why)}"
+                for x in idle
             ]
             word = translate("side", "Enter tells why")
             yield Fact(
                 self.theme,
-                translate("side", "{count} that cannot act now").format(count=len(idle)),
+                translate("side", "{count} others: no need seen, not known or no effect").format(count=len(idle)),
                 folded=folded,
                 fold_word=word,
                 quiet=True,
-                explanation=self.explainer.levers_without_effect(idle),
+                explanation=self.explainer.idle_levers(idle),
             )
 
     # scores
