@@ -29,7 +29,7 @@ from storage.errors import store_error
 if TYPE_CHECKING:
     from storage.store import Store
 
-RETENTION = "retention_days"
+RETENTION_SET = "retention time set"
 MOST_DAYS = 36_525
 WHY = "what it replaced belongs to another episode"
 MOVED = "moved to another episode"
@@ -67,20 +67,19 @@ def ended(store: Store) -> tuple[Ended, ...]:
 
 def retention_days(store: Store) -> int | None:
     """For how many days after its end an episode must stay; None while the ward has not said."""
-    text = store.fact(RETENTION)
-    return int(text) if text and text.isdigit() else None
+    said = store.person_events((RETENTION_SET,), newest=1)
+    return int(said[0].detail) if said and said[0].detail.isdigit() else None
 
 
 def set_retention(store: Store, days: int, *, by: str, now: Instant) -> None:
-    """Say for how many days after its end an episode must stay. That it was said is in the chain.
+    """Say for how many days after its end an episode must stay. It stands in the chain, with who said it.
 
     Raises:
         RecordError: `archive.bad_retention`.
     """
     if not 1 <= days <= MOST_DAYS:
         raise refuse("archive.bad_retention", value=days, accepted=MOST_DAYS)
-    store.put_fact(RETENTION, str(days))
-    store.record_event("retention time set", person=by, now=now, detail=str(days))
+    store.record_event(RETENTION_SET, person=by, now=now, detail=str(days))
 
 
 def write(store: Store, episodes: Sequence[str], path: Path, *, by: str, now: Instant) -> Archived:

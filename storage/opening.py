@@ -10,7 +10,7 @@ from uuid import uuid4
 import sqlalchemy as sa
 
 from core.record.message import Message
-from storage import keys, place, schema
+from storage import facts_kept, keys, place, schema
 from storage.engine import APPLICATION_ID, BUSY_SECONDS, Database, application_id, make_durable
 from storage.errors import StoreError, store_error
 from storage.triggers import create_triggers, trigger_findings
@@ -98,7 +98,7 @@ def _fill(database: Database, facts: dict[str, str]) -> None:
     with database.write() as connection:
         schema.metadata.create_all(connection)
         create_triggers(connection)
-        connection.execute(sa.insert(schema.store_facts), [{"key": k, "value": v} for k, v in facts.items()])
+        facts_kept.put(connection, facts)
         _stamp(connection)
 
 
@@ -149,6 +149,8 @@ def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float 
         database.close()
         raise
     closed = [newer] if newer else [Message("store.trigger", {"name": n, "what": what}) for n, what in wrong]
+    if not newer and facts_kept.problem(facts):
+        closed.append(Message("store.facts", {"path": path.name}))
     if facts.get(ARCHIVE) == "yes":
         closed.append(Message("store.archive", {"path": path.name}))
     if closed and not database.read_only:
@@ -186,7 +188,9 @@ def data_key(path: Path, passphrase: str | None) -> bytes | None:
     if not envelope.exists():
         with path.open("rb") as file:
             looks_random = len(set(file.read(4096))) > 200
-        raise store_error("key.envelope_missing" if looks_random else "store.not_a_store", path=path.name)
+        if looks_random:
+            raise store_error("key.envelope_missing", path=envelope.name)
+        raise store_error("store.not_a_store", path=path.name)
     text = keys.read_envelope(envelope)
     keys.check_envelope(text)  # nobody is asked for a passphrase that could open nothing
     if passphrase is None:
@@ -204,11 +208,12 @@ def check_facts(database: Database) -> dict[str, str]:
         with database.read() as connection:
             if application_id(connection) != APPLICATION_ID:
                 raise store_error("store.not_a_store", path=database.path.name)
-            rows = connection.execute(sa.select(schema.store_facts.c.key, schema.store_facts.c.value))
-            facts: dict[str, str] = {str(k): str(v) for k, v in rows}
+            facts = facts_kept.read(connection)
     except StoreError as error:
         if "no such table" in str(error):
             raise store_error("store.not_a_store", path=database.path.name) from error
+        if error.message.key == "store.damaged" and database.is_keyed:
+            raise store_error("store.damaged", **{**error.message.values, "first": "page"}) from error
         raise
     _check_format(facts, database.path)
     return facts

@@ -11,6 +11,7 @@ from hashlib import sha256
 import sqlalchemy as sa
 
 from core.record.instant import Instant
+from storage import facts_kept
 from storage import schema as s
 
 _REVISION = "layout_revision"
@@ -49,8 +50,7 @@ def layout_revision(connection: sa.Connection) -> int:
 def put_layout(connection: sa.Connection, name: str, text: str | None) -> None:
     """Keep a layout's text, or forget it (None)."""
     revision = layout_revision(connection) + 1
-    connection.execute(sa.delete(s.store_facts).where(s.store_facts.c.key == _REVISION))
-    connection.execute(sa.insert(s.store_facts), {"key": _REVISION, "value": str(revision)})
+    facts_kept.put(connection, {_REVISION: str(revision)})
     connection.execute(sa.delete(s.layout).where(s.layout.c.name == name))
     if text is not None:
         connection.execute(sa.insert(s.layout), {**_row(name, text), "revision": revision})

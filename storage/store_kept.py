@@ -9,8 +9,8 @@ from pathlib import Path
 import sqlalchemy as sa
 
 from core.record.instant import Instant
-from storage import documents, opening, restore_report, schema, settings_kept
-from storage.draft_batch import DraftBatch, DraftDocument, DraftPolicy, Receipt
+from storage import documents, facts_kept, opening, restore_report, schema, settings_kept
+from storage.draft_batch import DraftBatch, DraftDocument, DraftEvent, DraftPolicy, Receipt
 
 _ALL = 2**62
 
@@ -34,10 +34,9 @@ class StoreKept:
         return None if found is None else str(found)
 
     def put_fact(self, key: str, value: str) -> None:
-        """Keep one of the store's own facts. Facts are outside the ledger; what matters of them is also an event."""
+        """Keep one of the store's own facts, outside the ledger. What a person decides is an event instead."""
         with self._opened.database.write() as connection:
-            connection.execute(sa.delete(schema.store_facts).where(schema.store_facts.c.key == key))
-            connection.execute(sa.insert(schema.store_facts), {"key": key, "value": value})
+            facts_kept.put(connection, {key: value})
 
     def newer_than(self, head: int) -> restore_report.Newer:
         """What was recorded after a sequence, by episode: what a backup of that sequence lacks."""
@@ -87,10 +86,12 @@ class StoreKept:
         draft = DraftBatch(by, "policy", policies=(DraftPolicy(hash, text),))
         return self.append_drafts((draft,), (now,))[0]
 
-    def put_document(self, kind: str, name: str, data: bytes, by: str, now: Instant) -> str:
-        """Keep a document as it is, in the chain; its id."""
+    def put_document(self, kind: str, name: str, data: bytes, by: str, now: Instant, facts: str = "") -> str:
+        """Keep a document as it is, in the chain; its id. `facts` tell in one text what it is of, for reading again
+        what a name written for people does not say; they are an event of the same batch."""
         doc = DraftDocument(kind, name, data)
-        self.append_drafts((DraftBatch(by, "document", documents=(doc,)),), (now,))
+        events = (DraftEvent(by, kind, facts),) if facts else ()
+        self.append_drafts((DraftBatch(by, "document", documents=(doc,), events=events),), (now,))
         return doc.id
 
     def documents(self) -> tuple[documents.DocumentFacts, ...]:

@@ -12,7 +12,7 @@ import sqlalchemy as sa
 
 from core.record.entries import Action, NewEntry
 from core.record.message import Message
-from storage import episode_index, rules, settings_kept
+from storage import episode_index, facts_kept, rules, settings_kept
 from storage import schema as s
 from storage.chain import GENESIS, batch_hash, row_digest, rows_digest
 from storage.chunks import decode
@@ -25,7 +25,7 @@ _Digest = tuple[int, int, str]  # sequence, batch, digest
 
 def findings(database: Database, *, encrypted: bool) -> tuple[Message, ...]:
     """Everything that is wrong with a store; empty when all is well. Never raises for damage: it reports it."""
-    checks = (partial(_pages, encrypted=encrypted), _triggers, _chain, _blobs, _entries, _kept, _derived)
+    checks = (partial(_pages, encrypted=encrypted), _facts, _triggers, _chain, _blobs, _entries, _kept, _derived)
     found: list[Message] = []
     for check in checks:
         try:
@@ -45,6 +45,11 @@ def _pages(connection: sa.Connection, *, encrypted: bool) -> list[Message]:
 def _triggers(connection: sa.Connection) -> list[Message]:
     found = trigger_findings(connection)
     return [Message("verify.trigger", {"name": name, "what": what}) for name, what in found]
+
+
+def _facts(connection: sa.Connection) -> list[Message]:
+    wrong = facts_kept.problem(facts_kept.read(connection))
+    return [Message("verify.facts")] if wrong else []
 
 
 def _kept(connection: sa.Connection) -> list[Message]:

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 
 import sqlalchemy as sa
 
-from storage import backup, opening, place, schema
+from storage import backup, facts_kept, opening, place, schema
 from storage.engine import Database
 from storage.errors import store_error
 from storage.triggers import create_triggers, expected_triggers
@@ -99,10 +99,7 @@ def _step(database: Database, directory: ScriptDirectory, revision: str) -> None
 
 def _say_format(connection: sa.Connection, reached: int, readable_from: int) -> None:
     """An older program may read the store only where the migration says so: unsaid, it is kept from guessing."""
-    facts = schema.store_facts
-    for key, value in (("format", reached), ("readable_from", readable_from)):
-        connection.execute(sa.delete(facts).where(facts.c.key == key))
-        connection.execute(sa.insert(facts), {"key": key, "value": str(value)})
+    facts_kept.put(connection, {"format": str(reached), "readable_from": str(readable_from)})
 
 
 def _refresh_triggers(connection: sa.Connection) -> None:

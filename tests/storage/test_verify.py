@@ -174,3 +174,32 @@ def test_derived_tables_can_be_made_anew(filled: Path, make_store: Callable[...,
             episode_index.rebuild(c)
         with database.read() as c:
             assert episode_index.kept(c) == before != []
+
+
+@pytest.mark.parametrize(
+    "statement",
+    [
+        "UPDATE store_facts SET value = 'yes' WHERE key = 'imported'",
+        "UPDATE store_facts SET value = 'another' WHERE key = 'store_id'",
+        "UPDATE store_facts SET key = 'archivf' WHERE key = 'created_by'",
+        "UPDATE store_facts SET key = 'digesu' WHERE key = 'digest'",
+        "INSERT INTO store_facts VALUES ('archive', 'yes')",
+        "DELETE FROM store_facts WHERE key = 'created_at'",
+    ],
+)
+def test_changed_facts_are_found_and_open_a_store_for_reading_only(filled: Path, statement: str) -> None:
+    tamper(filled, statement)
+    with Store.open(filled) as store:
+        assert store.read_only
+        assert "store.facts" in [n.key for n in store.notices]
+        assert "verify.facts" in [m.key for m in store.verify()]
+
+
+def test_facts_stay_sound_through_all_that_changes_them(filled: Path) -> None:
+    with Store.open(filled) as store:
+        store.put_layout("a", "b")
+        store.put_fact("archive_of", "x")
+        assert store.verify() == ()
+        assert store.fact("archive_of") == "x"
+    tamper(filled, "DELETE FROM store_facts WHERE key = 'digest'")  # as a store was before facts had digests
+    assert findings(filled) == []
