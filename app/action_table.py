@@ -118,6 +118,9 @@ DEEDS: Final = (
     Deed("vitals_form", "log", QT_TRANSLATE_NOOP("action", "Vital signs..."), ("F12",),
          QT_TRANSLATE_NOOP("action", "Vital signs as a form, the last values beside it with their age."),
          needs_episode=True),
+    Deed("facts_form", "log", QT_TRANSLATE_NOOP("action", "Patient facts..."), ("Shift+F11",),
+         QT_TRANSLATE_NOOP("action", "Bed move, ceiling of care, resuscitation, targets, usual PaCO2, who answers: "
+                           "what changes later, with its time."), needs_episode=True),
     Deed("flag_seen", "log", QT_TRANSLATE_NOOP("action", "Flag seen"), ("F3",),
          QT_TRANSLATE_NOOP("action", "Say that you have seen the chosen flag, else the strongest one."),
          needs_episode=True, parted=True),

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt, Signal
+from collections.abc import Iterator
+
+from PySide6.QtCore import QPoint, Qt, Signal
 from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
 
@@ -14,6 +16,7 @@ from app.episode.side import SideColumn
 from app.episode.stack_words import stack_of
 from app.episode_shown import EpisodeOnScreen
 from app.explain import Explainer
+from app.headline import headline, state_now
 from app.phrases import translate
 from app.readers import reader_at
 from app.theme import Theme
@@ -25,6 +28,8 @@ from core.record.instant import MINUTE, Instant
 TIGHT = 440
 """Least height at 100 % at which the readout stands still above the charts."""
 SIDE_HEIGHT = 320
+LEAST_SEEN = 280
+"""Least height at 100 % of what is seen of the charts at which the clock stands over them."""
 
 
 class EpisodeView(QWidget):
@@ -43,6 +48,8 @@ class EpisodeView(QWidget):
         self._is_tight = False
         self.title = QLabel()
         self.title.setProperty("role", "title")
+        self.standing = ElidedLine()
+        self.standing.setProperty("role", "emphasis")
         self.about = ElidedLine()
         self.about.setProperty("role", "quiet")
         self.back_button = QPushButton(self.tr("Ward"))
@@ -62,10 +69,13 @@ class EpisodeView(QWidget):
 
     def _lay_out(self) -> None:
         px = self._theme.px
-        head = QHBoxLayout()
+        self._head = QWidget()
+        head = QHBoxLayout(self._head)
+        head.setContentsMargins(0, 0, 0, 0)
         head.setSpacing(px(12))
         head.addWidget(self.back_button)
         head.addWidget(self.title)
+        head.addWidget(self.standing, 1000)  # as wide as its words, before anything else has room
         head.addWidget(self.about, 1)
         head.addWidget(self.notice)
         head.addWidget(self.panels_button)
@@ -81,7 +91,7 @@ class EpisodeView(QWidget):
         self.roll.setWidget(inside)
         left = self._left = QVBoxLayout()
         left.setSpacing(px(4))
-        left.addLayout(head)
+        left.addWidget(self._head)
         left.addWidget(self.readout)
         left.addWidget(self.roll, 1)
         row = self._row = QHBoxLayout(self)
@@ -94,18 +104,28 @@ class EpisodeView(QWidget):
         super().resizeEvent(event)
         self._make_room()
 
+    def _hold_axis(self, *_place: int) -> None:
+        """The clock is seen however far the charts are rolled."""
+        seen = self.roll.viewport()
+        if seen.height() < self._theme.px(LEAST_SEEN):
+            self.stack.hold_axis_above(None)  # it would cover what little is seen
+            return
+        self.stack.hold_axis_above(self.stack.mapFrom(seen, QPoint(0, seen.height())).y())
+
     def _make_room(self) -> None:
-        """Where large text leaves little height, readout, charts and the side column roll under each other."""
+        """Where large text leaves little height, heading, readout, charts and side column roll under each other."""
         tight = self.height() < self._theme.px(TIGHT)
         if tight == self._is_tight:
             return
         self._is_tight = tight
         self.readout.set_rolling(tight)
         if tight:
-            self._rolled.insertWidget(0, self.readout)
+            self._rolled.insertWidget(0, self._head)
+            self._rolled.insertWidget(1, self.readout)
             self._rolled.addWidget(self.side)
             self.side.setMinimumHeight(self._theme.px(SIDE_HEIGHT))
         else:
+            self._left.insertWidget(0, self._head)
             self._left.insertWidget(1, self.readout)
             self._row.addWidget(self.side)
             self.side.setMinimumHeight(0)
@@ -113,6 +133,9 @@ class EpisodeView(QWidget):
     def _connect(self) -> None:
         self.back_button.clicked.connect(self._back)
         self.panels_button.clicked.connect(self._want_panels)
+        bar = self.roll.verticalScrollBar()
+        bar.valueChanged.connect(self._hold_axis)
+        bar.rangeChanged.connect(self._hold_axis)
         self.stack.instant_changed.connect(self._pointed)
         self.stack.reduced_changed.connect(self._reduced)
         self.stack.bracket_activated.connect(self._bracket)
@@ -143,6 +166,9 @@ class EpisodeView(QWidget):
         if same and instant is not None:
             self.stack.point_at(instant)
         self.title.setText(on.figures.label)
+        self.standing.say("; ".join(self._standing(on)))
+        self.standing.ensurePolished()
+        self.standing.setMaximumWidth(self.standing.fontMetrics().horizontalAdvance(self.standing.whole()) + 4)
         self.about.say(self._about(on))
         self.side.show_figures(on.figures, on.policy, self._reader())
         self._tell(self.stack.instant)
@@ -160,6 +186,15 @@ class EpisodeView(QWidget):
     def _reader(self) -> Reader:
         assert self._on is not None
         return reader_at(self._on.zone, self._on.gas_unit, self._on.course.until)
+
+    def _standing(self, on: EpisodeOnScreen) -> Iterator[str]:
+        """State and verdict in the fewest words, where the eye falls first."""
+        gas = next((g for g in reversed(on.figures.gases) if g.site != "venous"), None)
+        if gas is not None:
+            yield state_now(on.figures, gas, on.gas_unit)
+        told = headline(on.figures)
+        if told is not None:
+            yield told.short
 
     def _about(self, on: EpisodeOnScreen) -> str:
         facts = on.figures.profile
@@ -190,6 +225,7 @@ class EpisodeView(QWidget):
             self._on.course.at(at),
             self.stack.readings_at(at),
             pointed=instant is not None,
+            events=[t.word for t in self.stack.events_at(at)] if instant is not None else (),
         )
 
     def go_to_anchor(self, step: int) -> None:

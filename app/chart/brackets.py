@@ -3,10 +3,11 @@ sign, its word and the state of the gas. Windows that overlap stand in rows of t
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QPainter
+from PySide6.QtGui import QColor, QFontMetricsF, QPainter
 
 from app.chart.marks import fitted, gas_mark, solid_pen, verdict_sign
 from app.chart.row import FRONT, Layer, visible
@@ -33,6 +34,20 @@ def rows_of(brackets: tuple[Bracket, ...]) -> list[int]:
             ends[free] = bracket.end
         rows.append(min(free, _ROWS_AT_MOST - 1))
     return rows
+
+
+@dataclass(frozen=True, slots=True)
+class _Places:
+    """Columns of a bracket that are in view: its anchor, and its window from start to end."""
+
+    anchor: float
+    start: float
+    end: float
+
+    def left_of(self, width: float, most: float) -> float:
+        """Where words of a width begin: over the middle of the window, else as far left as the anchor."""
+        over_the_window = max((self.start + self.end) / 2 - width / 2, self.start)
+        return max(min(over_the_window, most - width), self.anchor)
 
 
 class BracketStrip:
@@ -98,9 +113,9 @@ class BracketStrip:
         painter.setBrush(QColor(c.accent))
         painter.drawRect(QRectF(round(x0) - px(2), rail - px(2), px(4), px(4)))
         area = self.layer.boundingRect()
-        low, high = max(xa, area.left()), min(xb, area.right())
-        room = min(max(self._free_until(bracket, area), high), area.right()) - low - px(4)
-        self._draw_words(painter, bracket, low, high, room, (top + rail) / 2)
+        places = _Places(max(x0, area.left()), max(xa, area.left()), min(xb, area.right()))
+        end = min(max(self._free_until(bracket, area), places.end), area.right()) - px(4)
+        self._draw_words(painter, bracket, places, end, (top + rail) / 2)
 
     def _free_until(self, bracket: Bracket, area: QRectF) -> float:
         """Column up to which words may run beyond a short bracket: where the next one of its row begins."""
@@ -109,36 +124,37 @@ class BracketStrip:
         later = [b.anchor for b in after if b.anchor > bracket.anchor]
         return area.left() + float(self.row.frame().x(self.row.seconds(later[0]))) if later else area.right()
 
-    def _draw_words(
-        self, painter: QPainter, bracket: Bracket, xa: float, xb: float, room: float, middle: float
-    ) -> None:
+    def _draw_words(self, painter: QPainter, bracket: Bracket, places: _Places, end: float, middle: float) -> None:
+        """The verdict's sign and word, the state's mark and word. Where they are too long for the window they
+        begin at the anchor; then the state's word gives way to its mark, last the end of the verdict's word."""
         theme = self.row.theme
-        c, px = theme.colours, theme.px
-        sign = float(px(10))
-        painter.setFont(theme.font(theme.type.caption, bold=True))
-        word = fitted(painter, bracket.word, room - sign - px(6))
-        width = painter.fontMetrics().horizontalAdvance(word)
-        rest = room - sign - px(6) - width
-        plain = theme.font(theme.type.caption)
-        state = bracket.state_word if bracket.state is not None else ""
-        painter.setFont(plain)
-        state_width = painter.fontMetrics().horizontalAdvance(state) + px(26)
-        if state_width > rest:
-            state = ""
-        total = sign + px(6) + width + (state_width if state else 0)
-        x = max((xa + xb) / 2 - total / 2, xa)
+        c, px, sign = theme.colours, theme.px, float(theme.px(10))
+        bold, plain = theme.font(theme.type.caption, bold=True), theme.font(theme.type.caption)
+        lead = sign + px(6)
+        room = end - places.anchor
         if room < sign:
             return
+        width = QFontMetricsF(bold).horizontalAdvance(bracket.word)
+        state_width = px(24) + QFontMetricsF(plain).horizontalAdvance(bracket.state_word)
+        state = bracket.state_word if bracket.state is not None else ""
+        mark = px(24) if bracket.state is not None else 0
+        if state and lead + width + state_width > room:
+            state = ""
+        painter.setFont(bold)
+        word = fitted(painter, bracket.word, room - lead - (state_width if state else mark))
+        width = QFontMetricsF(bold).horizontalAdvance(word)
+        total = lead + width + (state_width if state else mark)
+        x = places.left_of(total, end)
         verdict_sign(painter, theme, bracket.verdict, QRectF(x, middle - sign / 2, sign, sign))
         height = painter.fontMetrics().height()
-        x += sign + px(6)
+        x += lead
         painter.setPen(QColor(c.ink))
-        painter.setFont(theme.font(theme.type.caption, bold=True))
         painter.drawText(QRectF(x, middle - height / 2, width + 2, height), Qt.AlignmentFlag.AlignVCenter, word)
-        if state and bracket.state is not None:
-            x += width + px(12)
-            gas_mark(painter, theme, bracket.state, None, x, middle, px(9))
-            painter.setFont(plain)
-            painter.setPen(QColor(c.ink_quiet))
-            room_of_state = QRectF(x + px(11), middle - height / 2, state_width, height)
-            painter.drawText(room_of_state, Qt.AlignmentFlag.AlignVCenter, state)
+        x += width + px(12)
+        if bracket.state is None or x + px(6) > end:
+            return
+        gas_mark(painter, theme, bracket.state, None, x, middle, px(9))
+        painter.setFont(plain)
+        painter.setPen(QColor(c.ink))
+        room_of_state = QRectF(x + px(11), middle - height / 2, state_width, height)
+        painter.drawText(room_of_state, Qt.AlignmentFlag.AlignVCenter, state)

@@ -6,6 +6,7 @@ from numpy.typing import NDArray
 from PySide6.QtCore import QRectF
 from PySide6.QtGui import QColor
 
+from app.chart.doubts import Doubts
 from app.chart.shapes import MICROSECONDS, Drawn, Instants, Look, Reading, Trace, Values
 from core.figures.envelope import Envelope, EnvelopeSeries
 
@@ -62,6 +63,7 @@ class DrawnTrace:
     def __init__(self, trace: Trace, origin: int, ink: QColor, faint: QColor, gain: float, offset: float) -> None:
         self.trace, self.ink, self.faint = trace, ink, faint
         self.gain, self.offset = gain, offset
+        self.doubts = Doubts(trace.doubts)
         t, v = np.asarray(trace.t, np.int64), np.asarray(trace.v, np.float64)
         finite = np.isfinite(v)
         self.t, self.v = t[finite], v[finite]
@@ -77,7 +79,7 @@ class DrawnTrace:
         trace = self.trace
         if trace.drawn is Drawn.SPOTS:
             return []
-        doubtful = self.doubtful_at(t)
+        doubtful = self.doubts.covers(t)
         if trace.drawn is Drawn.STEPS:
             t, v, doubtful = np.repeat(t, 2)[1:], np.repeat(v, 2)[:-1], np.repeat(doubtful, 2)[:-1]
         if not doubtful.any():
@@ -87,13 +89,6 @@ class DrawnTrace:
         reach[1:] |= doubtful[:-1]
         sure, unsure = np.where(doubtful, np.nan, v), np.where(reach, v, np.nan)
         return [(EnvelopeSeries(t, unsure, trace.gap), self.faint), (EnvelopeSeries(t, sure, trace.gap), self.ink)]
-
-    def doubtful_at(self, t: Instants) -> NDArray[np.bool_]:
-        """Which of some instants lie in a stretch of doubt."""
-        found = np.zeros(len(t), np.bool_)
-        for span in self.trace.doubts:
-            found |= (t >= span.start) & (t < span.end)
-        return found
 
     def on_scale(self, values: Values) -> Values:
         """Values of the trace in the unit of the panel's first scale."""
@@ -114,6 +109,5 @@ class DrawnTrace:
         if i is None:
             return None
         at, trace = int(self.t[i]), self.trace
-        why = next((s.word for s in trace.doubts if s.start <= at < s.end), "")
-        look = Look(int(self.looks[i]))
+        why, look = self.doubts.word_at(at), Look(int(self.looks[i]))
         return Reading(panel, trace.key, trace.name, trace.unit, trace.decimals, at, float(self.v[i]), look, why)

@@ -54,7 +54,8 @@ def gas_mark(
 ) -> None:
     """A gas: outline by state, fill by verdict. A doubtful one stands in a dotted ring."""
     c = theme.colours
-    colour = QColor(c.verdicts[verdict] if verdict is not None else c.ink_quiet)
+    unjudged = c.ink if state is GasState.SEVERE else c.ink_quiet  # a severe gas is never quiet
+    colour = QColor(c.verdicts[verdict] if verdict is not None else unjudged)
     path = gas_outline(state, x, y, size)
     painter.save()
     painter.setRenderHint(QPainter.RenderHint.Antialiasing)

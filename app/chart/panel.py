@@ -13,7 +13,7 @@ from app.chart.end_labels import EndLabel, draw_end_labels, label_width
 from app.chart.marks import hatch, solid_pen, spot
 from app.chart.panel_header import PanelHeader
 from app.chart.row import ClockRow, Margins, RowItem, visible
-from app.chart.shapes import Area, Look, PanelSpec, Reading, Scale, Span
+from app.chart.shapes import Area, Look, PanelSpec, Reading, Scale
 from app.chart.time_ticks import ClockMark
 from app.chart.value_ticks import value_ticks, value_word
 from app.theme import Theme, blend
@@ -180,8 +180,7 @@ class PanelRow(ClockRow):
         for area in self.spec.areas:
             self._draw_area(painter, area)
         for drawn in self.traces:
-            for span in drawn.trace.doubts:
-                self._draw_doubt(painter, span)
+            self._draw_doubt(painter, drawn)
 
     def _draw_value_lines(self, painter: QPainter) -> None:
         frame = self.frame()
@@ -219,12 +218,12 @@ class PanelRow(ClockRow):
             painter.drawPolyline(QPolygonF(feet))
         painter.restore()
 
-    def _draw_doubt(self, painter: QPainter, span: Span) -> None:
-        frame, theme = self.frame(), self.theme
-        a, b = visible(frame, self.seconds(span.start), self.seconds(span.end))
-        if b <= a:
-            return
-        painter.fillRect(QRectF(a, 0, max(b - a, 1), frame.height), hatch(theme.colour("edge", 0.45)))
+    def _draw_doubt(self, painter: QPainter, drawn: DrawnTrace) -> None:
+        frame, ink = self.frame(), hatch(self.theme.colour("edge", 0.45))
+        start, end = self.window
+        for first, last in drawn.doubts.between(start, end, joined=round((end - start) / frame.width)):
+            a, b = visible(frame, self.seconds(first), self.seconds(last))
+            painter.fillRect(QRectF(a, 0, max(b - a, 1), frame.height), ink)
 
     def _draw_front(self, painter: QPainter) -> None:
         painter.save()

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from math import inf
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QRectF, Qt
@@ -13,6 +14,8 @@ from app.chart.row import FRONT, Layer
 if TYPE_CHECKING:
     from app.chart.panel import PanelRow
 
+_APART = 240
+"""Pixels at 100 % between two stretches of one doubt from which its reason is said again."""
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 
 
@@ -38,11 +41,15 @@ class PanelHeader:
             if word:
                 key += self._draw_key(painter, word, key, dashed=dashed)
         taken.append((taken[0][1], key))
+        said: dict[str, float] = {}
         for drawn in row.traces:
             for span in drawn.trace.doubts:
                 x = float(row.frame().x(row.seconds(span.start)))
                 end = float(row.frame().x(row.seconds(span.end)))
-                self._draw_doubt(painter, span.word, x, end, taken)
+                if x - said.get(span.word, -inf) < theme.px(_APART):
+                    continue  # said just before
+                if self._draw_doubt(painter, span.word, x, end, taken):
+                    said[span.word] = max(end, taken[-1][1])
 
     def _draw_key(self, painter: QPainter, word: str, x: float, *, dashed: bool) -> float:
         """A swatch and its word; returns the pixels taken."""
@@ -62,19 +69,20 @@ class PanelHeader:
 
     def _draw_doubt(
         self, painter: QPainter, word: str, x: float, end: float, taken: list[tuple[float, float]]
-    ) -> None:
-        """The reason over the hatched stretch, moved along the line to where it can stand."""
+    ) -> bool:
+        """The reason over the hatched stretch, moved along the line to where it can stand; whether it could."""
         theme, frame = self.row.theme, self.row.frame()
         width = painter.fontMetrics().horizontalAdvance(word) + theme.px(20)
         if end < 0 or x > frame.width or not word:
-            return
+            return False
         left = min(max(x, 0.0), frame.width - width)
         for a, b in sorted(taken):
             if left < b and left + width > a:
                 left = b
         if left + width > frame.width or left > max(end, x + theme.px(120)):
-            return  # no room near its stretch; the readout says it
+            return False  # no room near its stretch; the readout says it
         taken.append((left, left + width))
         painter.fillRect(QRectF(left, theme.px(9), theme.px(14), theme.px(10)), hatch(QColor(theme.colours.edge)))
         painter.setPen(QColor(theme.colours.ink_quiet))
         painter.drawText(QRectF(left + theme.px(20), 0, width, theme.px(28)), _LEFT, word)
+        return True

@@ -5,7 +5,7 @@ stands on the ribbon from each change on; where it is not known the ribbon is ha
 are gaps with a word. A settings change is a small tick above, with its words where there is room.
 """
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from itertools import groupby, pairwise
 
 import numpy as np
@@ -219,32 +219,50 @@ class RibbonRow(PanelRow):
 
 
 def draw_ticks(
-    painter: QPainter,
-    theme: Theme,
-    area: QRectF,
-    ticks: tuple[Tick, ...],
-    column: Callable[[int], float],
-    lines: int = 1,
+    painter: QPainter, theme: Theme, area: QRectF, ticks: tuple[Tick, ...], column: Callable[[int], float]
 ) -> None:
-    """Small ticks in an area with their words at the right, on the first of some lines that is free there."""
+    """Small ticks in an area with their words at the right, or at the left where only there is room."""
     c, px = theme.colours, theme.px
     painter.setFont(theme.font(theme.type.caption))
-    ends, height = [float("-inf")] * lines, area.height() / lines
-    places = [column(tick.at) for tick in ticks]
-    for n, (tick, x) in enumerate(zip(ticks, places, strict=True)):
-        until = places[n + 1] if lines == 1 and n + 1 < len(places) else area.right()
-        if not area.left() - px(160) <= x <= area.right():
+    seen = [(tick, x) for tick in ticks if area.left() - px(160) <= (x := column(tick.at)) <= area.right()]
+    for _, x in seen:
+        painter.fillRect(QRectF(round(x), area.bottom() - px(10), 2, px(8)), QColor(c.ink_quiet))
+    widths = [painter.fontMetrics().horizontalAdvance(tick.word) for tick, _ in seen]
+    lefts = placed_beside([x for _, x in seen], widths, area.left(), area.right(), gap=px(5))
+    for (tick, _), width, left in zip(seen, widths, lefts, strict=True):
+        if left is not None:
+            painter.setPen(QColor(c.ink_quiet if tick.doubtful else c.ink))
+            room = QRectF(left, area.top(), width + 2, area.height())
+            painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, tick.word)
+
+
+def placed_beside(
+    places: Sequence[float], widths: Sequence[float], left: float, right: float, *, gap: float
+) -> list[float | None]:
+    """Where each tick's word begins: right of it before the next tick, else left of it behind the last word,
+    else nowhere: words one over the other could be read by nobody.
+
+    >>> placed_beside([10.0, 50.0, 60.0], [20.0, 20.0, 20.0], 0.0, 100.0, gap=5.0)
+    [15.0, None, 65.0]
+    >>> placed_beside([10.0, 70.0, 80.0], [20.0, 20.0, 40.0], 0.0, 100.0, gap=5.0)
+    [15.0, 45.0, None]
+    """
+    found: list[float | None] = []
+    free = left
+    for n, (x, width) in enumerate(zip(places, widths, strict=True)):
+        until = min(places[n + 1] if n + 1 < len(places) else right, right)
+        before = places[n - 1] + gap if n else left
+        at: float | None = None
+        if x > right:
+            found.append(None)
             continue
-        width = painter.fontMetrics().horizontalAdvance(tick.word)
-        line = next((n for n, end in enumerate(ends) if end <= x - px(2)), None)
-        top = area.top() + (line or 0) * height
-        painter.fillRect(QRectF(round(x), top + height - px(10), 2, px(8)), QColor(c.ink_quiet))
-        if line is None or x + px(6) + width > until:
-            continue  # only the tick: words one over the other could be read by nobody
-        ends[line] = x + px(6) + width + px(6)
-        painter.setPen(QColor(c.ink_quiet if tick.doubtful else c.ink))
-        room = QRectF(x + px(6), top, width + 2, height)
-        painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, tick.word)
+        if x >= left and x + gap + width <= until:
+            at = x + gap
+        elif x - gap - width >= max(free, before):
+            at = x - gap - width
+        found.append(at)
+        free = max(free, x + gap) if at is None else max(at + width + gap, x + gap)
+    return found
 
 
 def _top(step: RibbonStep) -> float | None:

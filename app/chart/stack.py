@@ -4,7 +4,7 @@ from collections.abc import Sequence
 
 import pyqtgraph as pg
 from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QResizeEvent
+from PySide6.QtGui import QColor, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPen, QResizeEvent, QTransform
 from PySide6.QtWidgets import QGraphicsGridLayout, QWidget
 
 from app.chart.clock_window import kept_inside, zoomed
@@ -12,20 +12,17 @@ from app.chart.panel import PanelRow
 from app.chart.ribbon import RibbonRow
 from app.chart.row import ClockRow, Margins, RowItem
 from app.chart.shapes import MICROSECONDS, Bracket, Reading, RibbonStep, StackSpec, Tick
+from app.chart.stack_keys import key_pressed, moves_crosshair
 from app.chart.time_axis import EventRow, TimeAxisRow
 from app.chart.time_ticks import date_word, time_ticks
 from app.theme import GRID, Theme
 
-_PANEL_LEAST = 96  # pixels at 100 %
+_PANEL_LEAST = 86  # pixels at 100 %: ribbon, three panels, events and clock stand whole at 1280 x 800
 _RIBBON_WEIGHT = 1.1
 
 
 class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no types
-    """Draws a StackSpec.
-
-    Keys: arrows pan (Shift: half a window), + and - zoom, Home start, End now, 0 all; Ctrl with an arrow moves
-    the crosshair, Enter opens the bracket or tick under it, Esc takes it away.
-    """
+    """Draws a StackSpec; `app.chart.stack_keys` says what the keys do."""
 
     instant_changed = Signal(object)
     range_changed = Signal(object, object)
@@ -45,6 +42,7 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         self._reduced = False
         self._margins = Margins(0, 0, 0)
         self._items: list[RowItem] = []
+        self._foot: int | None = None
         ground = pg.GraphicsWidget()
         self.grid = QGraphicsGridLayout(ground)
         self.setCentralWidget(ground)
@@ -141,6 +139,24 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
                 layout.setRowMinimumHeight(n, self._least_height(row))
                 layout.setRowStretchFactor(n, round(100 * self._weight(row)))
         self.setMinimumHeight(self.minimumSizeHint().height())
+        self._hold_axis()
+
+    def hold_axis_above(self, foot: int | None) -> None:
+        """Where the stack is longer than what is seen of it, the clock stands at the foot of what is seen: `foot`
+        in pixels from the stack's top; None leaves it at its own place."""
+        if foot != self._foot:
+            self._foot = foot
+            self._hold_axis()
+
+    def _hold_axis(self) -> None:
+        for item in self._items:
+            item.setTransform(QTransform())
+            item.setZValue(0.0)
+        if self.axis is not None:
+            beyond = 0 if self._foot is None else max(self.height() - self._foot, 0)
+            self.axis.item.setTransform(QTransform.fromTranslate(0, -beyond))
+            self.axis.item.setZValue(1.0)
+            self.axis.float_above(beyond > 0)
 
     def _weight(self, row: ClockRow) -> float:
         if isinstance(row, RibbonRow):
@@ -255,6 +271,18 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         """Every trace's last value at or before an instant; its own instant tells its age."""
         return tuple(reading for row in self.rows for reading in row.readings(instant))
 
+    def events_at(self, instant: int) -> tuple[Tick, ...]:
+        """The events that a crosshair at an instant points at."""
+        return tuple(t for row in self.rows if isinstance(row, EventRow) for t in row.near(instant))
+
+    def bracket_at(self, instant: int) -> Bracket | None:
+        """The response window that holds an instant; of several the latest."""
+        for row in self.rows:
+            found = row.picked(QPointF(float(row.frame().x(row.seconds(instant))), 0.0))
+            if isinstance(found, Bracket):
+                return found
+        return None
+
     def settings_at(self, instant: int) -> RibbonStep | None:
         """The settings in force at an instant."""
         return self.ribbon.step_at(instant) if self.ribbon is not None else None
@@ -293,13 +321,8 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         self.point_at(None)
         super().leaveEvent(event)
 
-    def _step_crosshair(self, way: int) -> None:
-        start, end = self._window
-        inside = self.instant is not None and start <= self.instant <= end
-        at = self.instant if inside and self.instant is not None else (start + end) // 2
-        self.point_at(min(max(at + way * (end - start) // 100, start), end))
-
-    def _open_at_crosshair(self) -> None:
+    def open_at_crosshair(self) -> None:
+        """Open the bracket or the tick under the crosshair."""
         for row in self.rows:
             if self.instant is not None:
                 x = float(row.frame().x(row.seconds(self.instant)))
@@ -313,44 +336,16 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
             self.tick_activated.emit(found)
         return found is not None
 
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if self._key_of_crosshair(event):
+    def event(self, event: QEvent) -> bool:
+        """Ctrl with an arrow is the crosshair's here, whatever shortcut the window may have for it."""
+        if event.type() is QEvent.Type.ShortcutOverride and isinstance(event, QKeyEvent) and moves_crosshair(event):
             event.accept()
-            return
-        keys, span = Qt.Key, (self._window[1] - self._window[0]) / MICROSECONDS
-        step = span / (2 if event.modifiers() & Qt.KeyboardModifier.ShiftModifier else 8)
-        match event.key():
-            case keys.Key_Left:
-                self.pan_seconds(-step)
-            case keys.Key_Right:
-                self.pan_seconds(step)
-            case keys.Key_Plus | keys.Key_Equal:
-                self.zoom(0.5)
-            case keys.Key_Minus:
-                self.zoom(2.0)
-            case keys.Key_Home:
-                self.go_home()
-            case keys.Key_End:
-                self.go_now()
-            case keys.Key_0:
-                self.show_all()
-            case _:
-                event.ignore()  # the window may know the key; pyqtgraph's own handler would swallow it
-                return
-        event.accept()
+            return True
+        return bool(super().event(event))
 
-    def _key_of_crosshair(self, event: QKeyEvent) -> bool:
-        ways = {int(Qt.Key.Key_Left): -1, int(Qt.Key.Key_Right): 1}
-        control = bool(event.modifiers() & Qt.KeyboardModifier.ControlModifier)
-        if control and event.key() in ways:
-            self._step_crosshair(ways[event.key()])
-        elif event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and self.instant is not None:
-            self._open_at_crosshair()
-        elif event.key() == Qt.Key.Key_Escape and self.instant is not None:
-            self.point_at(None)
-        else:
-            return False
-        return True
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        # the window may know another key; pyqtgraph's own handler would swallow it
+        event.setAccepted(key_pressed(self, event))
 
     def focusInEvent(self, event: QFocusEvent) -> None:
         super().focusInEvent(event)
@@ -375,6 +370,7 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
         super().resizeEvent(event)
         if getattr(self, "spec", None) is not None:
             self.grid.activate()
+            self._hold_axis()
             self._show()
 
     def close(self) -> bool:

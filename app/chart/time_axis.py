@@ -24,6 +24,7 @@ class TimeAxisRow(ClockRow):
         self.zone: ZoneInfo | None = None
         self.note = ""
         self.left_word = ""
+        self._floats = False
         self.labels = Layer(self.item, FRONT, self._whole, self._draw_labels)
 
     def layers(self) -> list[QGraphicsItem]:
@@ -65,8 +66,17 @@ class TimeAxisRow(ClockRow):
         super()._item_resized()
         self.labels.resized()
 
+    def float_above(self, floats: bool) -> None:
+        """Whether it lies over rows that are rolled under it."""
+        self._floats = floats
+        self.card.update()
+
     def _draw_card(self, painter: QPainter) -> None:
-        """No card: the axis lies on the ground."""
+        """No card: the axis lies on the ground, or on a strip of it over the rows."""
+        if self._floats:
+            strip, c = self.item.rect().adjusted(-2, 0, 2, 0), self.theme.colours
+            painter.fillRect(strip, QColor(c.ground))
+            painter.fillRect(QRectF(strip.left(), strip.top(), strip.width(), 1), QColor(c.edge))
 
     def _draw_back(self, painter: QPainter) -> None:
         """No lines: the rows above have them."""
@@ -165,3 +175,34 @@ class EventRow(ClockRow):
     def _draw_front(self, painter: QPainter) -> None:
         draw_on_rail(painter, self.theme, self.view.rect(), self.ticks, self._column, lines=2)
         self.draw_now(painter)
+        self._draw_pointed(painter)
+
+    def point_at(self, instant: int | None) -> None:
+        super().point_at(instant)
+        self.front.update()
+
+    def near(self, instant: int) -> tuple[Tick, ...]:
+        """The events that a crosshair at an instant points at."""
+        frame = self.frame()
+        reach = self.theme.px(4) * (frame.x1 - frame.x0) / frame.width
+        return tuple(t for t in self.ticks if abs(self.seconds(t.at) - self.seconds(instant)) <= reach)
+
+    def _draw_pointed(self, painter: QPainter) -> None:
+        """What the crosshair points at, in all its words, on a plate over the others."""
+        if self.crossed is None:
+            return
+        found = self.near(self.origin + round(self.crossed * MICROSECONDS))
+        if not found:
+            return
+        theme, area, px = self.theme, self.view.rect(), self.theme.px
+        painter.setFont(theme.font(theme.type.caption, bold=True))
+        words, metrics = "; ".join(t.word for t in found), painter.fontMetrics()
+        flags = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextWordWrap
+        width = min(float(metrics.horizontalAdvance(words)) + px(14), area.width())
+        left = min(max(self._column(found[0].at), 0.0), area.width() - width)
+        plate = QRectF(round(left), px(8), width, area.height() - px(8))
+        painter.fillRect(plate, QColor(theme.colours.raised))
+        painter.setPen(QColor(theme.colours.edge))
+        painter.drawRect(plate.adjusted(0.5, 0.5, -0.5, -0.5))
+        painter.setPen(QColor(theme.colours.ink))
+        painter.drawText(plate.adjusted(px(6), 0, -px(6), 0), flags, words)

@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from app.deeds.doer import Doer
 from app.operations import panel as panel_operations
 from app.operations.outcome import Outcome
 from app.panels import PanelSet, to_json
+
+if TYPE_CHECKING:
+    from app.chart.stack import PanelStack
 
 
 class EpisodeDeeds(Doer):
@@ -64,20 +69,24 @@ class EpisodeDeeds(Doer):
 
     def do_go_start(self) -> None:
         """Show the start of support."""
-        self.window.show_page("episode")
-        self.pages.episode.stack.go_home()
+        self._charts().go_home()
 
     def do_go_now(self) -> None:
         """Show the newest hours."""
-        self.window.show_page("episode")
-        self.pages.episode.stack.go_now()
+        self._charts().go_now()
 
     def do_next_anchor(self) -> None:
         """Crosshair on the next change."""
-        self.window.show_page("episode")
+        self._charts()
         self.pages.episode.go_to_anchor(1)
 
     def do_previous_anchor(self) -> None:
         """Crosshair on the change before."""
-        self.window.show_page("episode")
+        self._charts()
         self.pages.episode.go_to_anchor(-1)
+
+    def _charts(self) -> PanelStack:
+        """The charts of the episode, on show. Showing the page draws it anew, so it is left where it stands."""
+        if self.pages.name != "episode":
+            self.window.show_page("episode")
+        return self.pages.episode.stack

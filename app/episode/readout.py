@@ -65,9 +65,11 @@ class Readout(QFrame):
         self._values.setFixedHeight(line * (2 if theme.text_scale < 1.3 else 3 if theme.text_scale < 1.75 else 4))
 
     def show_moment(
-        self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool
-    ) -> None:
-        """Say what stood at a moment; `pointed`: the crosshair is there, else it is now."""
+        self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool,
+        events: Iterable[str] = (),
+    ) -> None:  # fmt: skip
+        """Say what stood at a moment; `pointed`: the crosshair is there, else it is now. `events`, which the chart
+        itself writes at the crosshair, are for screen readers."""
         head = wall(at, zone) if pointed else self.tr("Now, {time}").format(time=wall(at, zone))
         settings = settings_line(stretch.settings) if stretch is not None else self.tr("no settings in force")
         age = ""
@@ -79,7 +81,7 @@ class Readout(QFrame):
         )
         parts = [self._value(r, at) for r in _once(readings)]
         self._values.setText(" &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment")))
-        self._values.setAccessibleName(self.plain())
+        self._values.setAccessibleName("\n".join((self.plain(), *events)))
 
     def plain(self) -> str:
         """Both lines in plain words."""

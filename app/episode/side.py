@@ -8,10 +8,11 @@ from dataclasses import replace
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
 
+from app.certainty import certainty_words
 from app.episode.due_done import done_fact
 from app.episode.figure_list import FigureList
 from app.episode.flag_history import history_fact, word_lines
-from app.explain import Explainer, Explanation, sure_words
+from app.explain import Explainer, Explanation
 from app.explain_figures import CLASSES, explain_row, score_in, score_value
 from app.fact import Fact, heading
 from app.figure_groups import figure_groups
@@ -282,7 +283,7 @@ class _Facts:
         return " ".join(sentence(e, self.reader) for e in flag.evidence)
 
     def _source(self, flag: FlagFigure) -> str:
-        return f"{tier_word(Tier(flag.tier))}. {flag.source} ({sure_words(flag.sure)})"
+        return f"{tier_word(Tier(flag.tier))}. {flag.source} ({certainty_words(flag)})"
 
     # due, levers
 

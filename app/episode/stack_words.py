@@ -7,7 +7,8 @@ from zoneinfo import ZoneInfo
 
 import numpy as np
 
-from app.chart.shapes import Area, Band, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick
+from app.chart.shapes import Area, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick
+from app.episode.limits import bands_of
 from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.episode_shown import EpisodeOnScreen
@@ -25,6 +26,10 @@ from core.record.instant import HOUR, MINUTE, Instant
 RIBBON_HIGH = 25.0
 LONG = 36 * HOUR
 """An episode longer than this opens on its newest day; all of it is one key away."""
+
+
+JUDGED = {"ph", "paco2", "pao2", "pf"}
+"""What the arms of a verdict are read from: a panel with one of them carries the brackets."""
 
 
 def stack_of(on: EpisodeOnScreen, now: Instant) -> StackSpec:
@@ -72,35 +77,17 @@ def _panel(on: EpisodeOnScreen, panel: Panel, maker: TraceMaker) -> PanelSpec:
     traces = tuple(t for n, c in enumerate(panel.channels) for t in maker.traces(c, n))
     areas = tuple(_areas(on, panel))
     scales = scales_of(panel, traces, on.gas_unit, areas)
-    gas = bool({"ph", "paco2"} & set(panel.channels))
+    judged = bool(JUDGED & set(panel.channels))
     return PanelSpec(
         panel.key,
         panel.title,
         traces,
         scales,
-        tuple(_bands(on, panel)) if panel.bands else (),
+        bands_of(on, panel) if panel.bands else (),
         areas,
-        tuple(_brackets(on)) if gas else (),
+        tuple(_brackets(on)) if judged else (),
         panel.height,
     )
-
-
-def _bands(on: EpisodeOnScreen, panel: Panel) -> Iterator[Band]:
-    low, high = on.figures.profile.get("target_spo2_low"), on.figures.profile.get("target_spo2_high")
-    if "spo2" in panel.channels and isinstance(low, float) and isinstance(high, float):
-        word = translate("stack", "target {low:g} to {high:g} %").format(low=low, high=high)
-        yield Band(low, high, "%", word)
-    if "ph" in panel.channels:
-        state = on.policy.state
-        yield Band(
-            state.acidotic_below_ph.value,
-            state.alkalotic_above_ph.value,
-            "pH",
-            f"{state.acidotic_below_ph.value:.2f} - {state.alkalotic_above_ph.value:.2f}",
-        )
-    limit = on.figures.leak.limit_L_per_min
-    if "leak" in panel.channels and limit is not None:
-        yield Band(0.0, limit, "L/min", translate("stack", "within {limit:.0f}").format(limit=limit))
 
 
 def _areas(on: EpisodeOnScreen, panel: Panel) -> Iterator[Area]:
@@ -113,7 +100,7 @@ def _areas(on: EpisodeOnScreen, panel: Panel) -> Iterator[Area]:
         np.array(expected.low_mmHg) * shown.factor,
         np.array(expected.high_mmHg) * shown.factor,
         shown.unit,
-        translate("stack", "expected"),
+        translate("stack", "PaCO2 expected, not measured"),
     )
 
 

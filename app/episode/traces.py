@@ -24,8 +24,8 @@ _NAMES: Final = {
     "ph": "pH",
     "paco2": "PaCO2",
     "pao2": "PaO2",
-    "rr": "Counted",
-    "rr_total": "Device",
+    "rr": "RR counted",
+    "rr_total": "RR device",
     "vte": "Tidal vol.",
     "mv": "Minute vol.",
 }
@@ -211,15 +211,19 @@ class TraceMaker:
 
 
 def runs_above(t: np.ndarray, v: np.ndarray, limit: float) -> list[tuple[Instant, Instant]]:
-    """Stretches of samples above a limit; each reaches to the next sample, at most 5 minutes on."""
-    if t.size == 0:
-        return []
+    """Stretches of samples above a limit; each reaches to the next sample, at most 5 minutes on.
+
+    Stretches less than a minute apart are one: a leak noted every second trembles about its limit.
+    """
     over = np.concatenate(([False], v > limit, [False]))
     edges = np.flatnonzero(over[1:] != over[:-1])
-    ends = np.append(t[1:], t[-1] + MINUTE)
-    return [
-        (int(t[a]), int(min(ends[b - 1], t[b - 1] + LEAST_GAP))) for a, b in zip(edges[::2], edges[1::2], strict=True)
-    ]
+    if edges.size == 0:
+        return []
+    starts, last = t[edges[::2]], edges[1::2] - 1
+    ends = np.minimum(np.append(t[1:], t[-1] + MINUTE)[last], t[last] + LEAST_GAP)
+    apart = starts[1:] - ends[:-1] >= MINUTE
+    firsts, lasts = np.concatenate(([True], apart)), np.concatenate((apart, [True]))
+    return [(int(a), int(b)) for a, b in zip(starts[firsts], ends[lasts], strict=True)]
 
 
 def trace_name(channel: str) -> str:

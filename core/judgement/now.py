@@ -32,6 +32,9 @@ def now_figure(seen: Observed) -> NowFigure:
         since_start_gain_lost=since is not None and since.gain_lost,
         off_mask_since=off.start if off is not None else None,
         last_logged_at=max(_logged(ctx), default=None),
+        spo2_target_low=ctx.target.low,
+        spo2_target_high=ctx.target.high,
+        spo2_target_prescribed=ctx.target.prescribed,
     )
 
 

@@ -347,6 +347,10 @@ class NowFigure:
     off_mask_since: Instant | None = None
     last_logged_at: Instant | None = None
     """The newest sample or entry about the patient; facts of the profile and words on flags do not count."""
+    spo2_target_low: float | None = None
+    spo2_target_high: float | None = None
+    """The range in % that SpO2 is judged against: as prescribed, else as the risk calls for."""
+    spo2_target_prescribed: bool = False
 
 
 @dataclass(frozen=True, slots=True)
