@@ -10,6 +10,7 @@ from dataclasses import dataclass
 
 from PySide6.QtCore import QCoreApplication
 
+from app.certainty import certainty_words
 from app.figure_rows import doubts_of
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
@@ -55,6 +56,8 @@ class Explanation:
     reason: str = ""
     formula: str = ""
     population: str = ""
+    detail_sure: str = ""
+    """How sure durations and the like are, where the source does not give them."""
     may_be_copied: bool = True
     """False for what is expected and never measured: no text to paste is made of it."""
 
@@ -71,19 +74,8 @@ class Explanation:
         if self.source:
             parts.append(translate("explain", "Source: {source}").format(source=self.source))
         if self.sure:
-            parts.append(translate("explain", "How sure: {sure}").format(sure=sure_words(self.sure)))
+            parts.append(translate("explain", "How sure: {sure}").format(sure=certainty_words(self)))
         return "\n".join(p for p in parts if p)
-
-
-def sure_words(sure: str) -> str:
-    """How sure a number is, in words that cannot be misread."""
-    return {
-        "confirmed": translate("explain", "confirmed in the source's own text"),
-        "secondary": translate("explain", "from a secondary source"),
-        "from memory": translate("explain", "from memory: confirm locally before relying on it"),
-        "computed here": translate("explain", "computed here from a confirmed figure"),
-        "common practice": translate("explain", "common practice, no source found"),
-    }.get(sure, sure)
 
 
 @dataclass(frozen=True, slots=True)
@@ -103,7 +95,8 @@ class Explainer:
             translate("explain", "Policy {hash}.").format(hash=flag.policy[:16]),
         )
         name = marker_name(flag.marker, self.reader)
-        return Explanation(name, (*evidence, *self._marker(flag)), (), notes, flag.source, flag.sure)
+        return Explanation(name, (*evidence, *self._marker(flag)), (), notes, flag.source, flag.sure,
+                           detail_sure=flag.detail_sure)  # fmt: skip
 
     def _marker(self, flag: FlagFigure) -> Iterator[str]:
         """The marker's own numbers, and whom it applies to."""

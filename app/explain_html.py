@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 from html import escape
 
-from app.explain import Explanation, sure_words, translate
+from app.certainty import certainty_words
+from app.explain import Explanation, translate
 from app.theme import Theme
 
 
@@ -37,7 +38,7 @@ def _parts(e: Explanation, theme: Theme) -> Iterator[str]:
     if e.source:
         yield _headed(translate("explain", "Source"), (e.source,), theme)
     if e.sure:
-        yield _headed(translate("explain", "How sure"), (sure_words(e.sure),), theme)
+        yield _headed(translate("explain", "How sure"), (certainty_words(e),), theme)
 
 
 def _headed(head: str, lines: tuple[str, ...], theme: Theme, *, strong: bool = False) -> str:

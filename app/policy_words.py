@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 import msgspec
 
-from app.explain import sure_words
+from app.certainty import certainty_words
 from app.finding_names import due_name, group_name, marker_name
 from app.formats import fixed, fraction, trimmed
 from app.phrases import translate
@@ -84,6 +84,7 @@ class Rule:
     """One word or two: `confirmed`, `from memory`."""
     more: tuple[str, ...] = ()
     differs: tuple[Difference, ...] = ()
+    detail_sure: str | None = None
 
     def lines(self) -> Iterator[tuple[str, str]]:
         """(what, words) of everything that is known of it."""
@@ -97,7 +98,7 @@ class Rule:
             yield translate("policy", "For whom"), self.population
         for line in self.more:
             yield "", line
-        yield translate("policy", "Source"), f"{self.source} ({sure_words(self.sure)})" if self.sure else self.source
+        yield translate("policy", "Source"), f"{self.source} ({certainty_words(self)})" if self.sure else self.source
         for found in self.differs:
             yield translate("policy", "Differs"), found.sentence
 
@@ -141,7 +142,7 @@ def _marker(key: str, rule: MarkerRule, told: list[PolicyDifference]) -> Rule:
     population = translate("policy", "everyone") if rule.population == "any" else rule.population
     population = population.replace("copd", "COPD").replace("ards", "ARDS")
     return Rule(path, group_name(rule.group), marker_name(key), rule.on, rule.tier, ", ".join(words), population,
-                rule.source, rule.sure, tuple(more), _differs(path, told))  # fmt: skip
+                rule.source, rule.sure, tuple(more), _differs(path, told), rule.detail_sure)  # fmt: skip
 
 
 def _due(key: str, rule: DueRule, told: list[PolicyDifference]) -> Rule:

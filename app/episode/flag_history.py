@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from app.explain import Explanation, sure_words
+from app.certainty import certainty_words
+from app.explain import Explanation
 from app.fact import Fact
 from app.finding_names import marker_name
 from app.phrases import translate
@@ -29,7 +30,7 @@ def history_fact(theme: Theme, figures: EpisodeFigures, reader: Reader) -> Fact 
         title = translate("flag history", "1 earlier flag")
     lines = tuple(f"{line_of(f, reader)} {_evidence(f, reader)}".rstrip() for f in closed)
     kinds = ", ".join(f"{n} {word}" for word, n in _kinds(closed))
-    sources = (f"{marker_name(f.marker, reader)}: {f.source} ({sure_words(f.sure)})" for f in closed)
+    sources = (f"{marker_name(f.marker, reader)}: {f.source} ({certainty_words(f)})" for f in closed)
     told = (*lines, *dict.fromkeys(sources))
     return Fact(theme, title, (kinds,), folded=lines, fold_word=translate("flag history", "Enter tells each"),
                 explanation=Explanation(title, told), quiet=True)  # fmt: skip

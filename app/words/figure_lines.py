@@ -264,7 +264,8 @@ class FigureLines:
 
     def certainty(self, f: FlagFigure) -> str:
         """Where a marker comes from and how sure that is."""
-        return f"{f.source} [{self.tr(f.sure)}]"
+        detail = f"; {self.tr('for how long and the like')}: {self.tr(f.detail_sure)}"
+        return f"{f.source} [{self.tr(f.sure)}{detail if f.detail_sure and f.detail_sure != f.sure else ''}]"
 
     def due(self, d: DueFigure) -> str:
         """A due item: what, by when, its state and why."""

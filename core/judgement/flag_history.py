@@ -54,6 +54,7 @@ class History:
             source=str(self.raised.get("source", "")), sure=str(self.raised.get("sure", "")), policy=self.policy,
             ended_at=self.ended_at or self.undone_at or as_of, state=NO_LONGER, strongest=False,
             undone_by_correction=self.policy == policy or self.life == UNDONE,
+            detail_sure=str(self.raised.get("detail_sure", "")),
         )  # fmt: skip
 
 
@@ -141,7 +142,7 @@ def _entry(flag: FlagFigure, words: str, episode_key: str, policy_hash: str, now
     told: dict[str, Any] = {"flag_id": flag.flag_id, "since": flag.since, "policy": policy_hash, "engine": ENGINE}
     if words == RAISED:
         told |= {"tier": flag.tier, "group": flag.group, "source": flag.source, "sure": flag.sure,
-                 "evidence": [[m.key, _kept(m)] for m in flag.evidence]}  # fmt: skip
+                 "detail_sure": flag.detail_sure, "evidence": [[m.key, _kept(m)] for m in flag.evidence]}  # fmt: skip
     if words == NO_LONGER:
         told["ended_at"] = flag.ended_at
     return NewEntry(episode_key, flag.marker, now, words=words, raw=_json(told), action=Action.FLAG)

@@ -99,7 +99,7 @@ def _figure(met: _Met, name: str, known: History | None, ctx: Context) -> FlagFi
         tier="remark" if spell.outside_population else rule.tier, since=spell.since,
         evidence=(*spell.evidence, *_beside(rule, spell, ctx)), source=rule.source, sure=rule.sure,
         policy=ctx.policy.hash, ended_at=spell.until, state=RAISED if spell.until is None else NO_LONGER,
-        outside_population=spell.outside_population,
+        outside_population=spell.outside_population, detail_sure=rule.detail_sure or "",
     )  # fmt: skip
     return flag if known is None else _as_handled(flag, known)
 

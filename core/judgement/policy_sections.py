@@ -178,6 +178,8 @@ class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
 
     `outside`: what happens outside the population: silent, or a remark that says so. `gap_min`: met again within
     so many minutes is the same flag. `stale_min`: what an open flag rests on is stale when older, and says so.
+    `sure`: how sure the limit of the source is. `detail_sure`: how sure the numbers are that the source does not
+    give (for how long, within which window, what clears it); None where it gives them all.
     `limits` are plain numbers (their names carry the unit), `pressures` gas pressures in both forms.
     """
 
@@ -190,6 +192,7 @@ class MarkerRule(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     stale_min: float = 360.0
     source: str
     sure: Sure
+    detail_sure: Sure | None = None
     limits: dict[str, float] = {}
     pressures: dict[str, PressureLimit] = {}
 

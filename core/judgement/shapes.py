@@ -272,6 +272,8 @@ class FlagFigure:
     settled_at: Instant | None = None
     settled_why: str | None = None
     undone_by_correction: bool = False
+    detail_sure: str = ""
+    """How sure durations, windows and the like are, which the source does not give; "" where it gives them all."""
 
 
 @dataclass(frozen=True, slots=True)

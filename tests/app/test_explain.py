@@ -1,6 +1,7 @@
 """Every figure explains itself: inputs with times, the source, how sure. The policy's own limits stand there."""
 
-from app.explain import Explainer, sure_words
+from app.certainty import sure_words
+from app.explain import Explainer
 from app.words import Reader
 from core.judgement.policy import shipped_policy
 from tests.support.invented_ward import ZONE, failing
