@@ -16,7 +16,6 @@ from PySide6.QtWidgets import (
     QFrame,
     QHBoxLayout,
     QLabel,
-    QPushButton,
     QSizePolicy,
     QVBoxLayout,
 )
@@ -26,19 +25,20 @@ from app.operations import correction, entry
 from app.operations.entry import LineRequest, Preview
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
-from app.phrases import channel_name
 from app.readers import reader_at
 from app.session import SessionModel
 from app.strip.completion import completed, completions
 from app.strip.line_field import LineField
-from app.strip.preview_words import preview_words, recorded_words
+from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, OneKeyButtons
+from app.strip.preview_words import preview_words, recorded_words, undone_words
 from app.strip.said_html import completion_html, marked, preview_html, quiet
+from app.strip.sent_lines import Sent, SentLines
 from app.strip.settle_time import SettleTime
+from app.strip.undo_stack import UndoStack
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.record.episode import Episode
 
-MOST_UNDO = 50
 TIGHT = 560
 """Least height of the window at 100 % at which buttons have a row of their own; their keys and menu stay."""
 
@@ -72,7 +72,8 @@ class LogStrip(QFrame):
         self._pressed_early = False
         self.settle = SettleTime()
         self._labels: dict[str, str] = {}
-        self._undo: list[Recorded] = []
+        self._news: dict[str, str] = {}
+        self._undo, self._lines = UndoStack(), SentLines()
         self._off_mask = False
         self._closed = ""
         self.whom = QLabel()
@@ -84,7 +85,8 @@ class LogStrip(QFrame):
         self.said.setWordWrap(True)
         self.said.setAlignment(Qt.AlignmentFlag.AlignTop)
         self.said.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
-        self.buttons: dict[str, QPushButton] = {}
+        self.keys = OneKeyButtons()
+        self.buttons = self.keys.by_key
         self._column = QVBoxLayout(self)
         self._lay_out()
         self._connect()
@@ -93,23 +95,11 @@ class LogStrip(QFrame):
 
     def _lay_out(self) -> None:
         self._row = QBoxLayout(QBoxLayout.Direction.LeftToRight)
-        line, keys = QHBoxLayout(), QHBoxLayout()
+        line = QHBoxLayout()
         line.addWidget(self.whom)
         line.addWidget(self.line, 1)
         self._row.addLayout(line, 1)
-        self._row.addLayout(keys)
-        for key, word, shortcut in (
-            ("gas sent", self.tr("Gas sent"), "F6"),
-            ("mask", self.tr("Mask off"), "F7"),
-            ("checked no change", self.tr("Checked, no change"), "F8"),
-        ):
-            button = QPushButton(f"{word}  {shortcut}")
-            button.setAccessibleName(word)
-            button.setProperty("role", "small")
-            button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
-            self.buttons[key] = button
-            keys.addWidget(button)
-        keys.addStretch(0)
+        self._row.addWidget(self.keys)
         self._column.addLayout(self._row)
         self._column.addWidget(self.said)
 
@@ -118,9 +108,9 @@ class LogStrip(QFrame):
         self.line.returnPressed.connect(self._entered)
         self.line.left.connect(self.leave)
         self.line.completion_wanted.connect(self._complete)
-        self.buttons["gas sent"].clicked.connect(self.gas_sent)
-        self.buttons["mask"].clicked.connect(self.mask_moved)
-        self.buttons["checked no change"].clicked.connect(self.checked)
+        self.buttons[GAS_SENT].clicked.connect(self.gas_sent)
+        self.buttons[MASK].clicked.connect(self.mask_moved)
+        self.buttons[CHECKED].clicked.connect(self.checked)
 
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
@@ -139,11 +129,9 @@ class LogStrip(QFrame):
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Where the line would be too short, the keys' buttons stand under it."""
         super().resizeEvent(event)
-        buttons = sum(b.sizeHint().width() for b in self.buttons.values())
-        rest = self.width() - buttons - self.whom.sizeHint().width()
+        rest = self.width() - self.keys.needed() - self.whom.sizeHint().width()
         tight = rest < self._theme.px(240) and self.window().height() < self._theme.px(TIGHT)
-        for button in self.buttons.values():
-            button.setVisible(not tight)
+        self.keys.setVisible(not tight)
         self._fit_words(tight)
         direction = QBoxLayout.Direction
         self._row.setDirection(direction.LeftToRight if rest >= self._theme.px(240) else direction.TopToBottom)
@@ -161,15 +149,16 @@ class LogStrip(QFrame):
         if record is not None:
             self._labels[record.key] = label
         self.whom.setText(label or self.tr("No patient"))
-        word = self.tr("Mask on") if off_mask else self.tr("Mask off")
-        self.buttons["mask"].setText(f"{word}  F7")
-        self.buttons["mask"].setAccessibleName(word)
+        self.keys.say_mask(off=off_mask)
         self._off_mask = off_mask
         for widget in (self.line, *self.buttons.values()):
             widget.setEnabled(record is not None and not self._closed)
         self.line.setPlaceholderText(self.tr("16/6 35    14:20 rr 28 spo2 91    gas sent    note ..."))
         if other:
             self._clear()
+            self._put_back()
+        if record is not None and record.key in self._news:
+            self._become(State.TOLD, escape(self._news.pop(record.key)))
 
     def set_closed(self, why: str) -> None:
         """Take no line, and say why; "" opens the strip again. What was half typed is taken away."""
@@ -285,6 +274,8 @@ class LogStrip(QFrame):
     def _entered(self) -> None:
         if self._awaited is not None:
             self._pressed_early = True
+        elif self.state in (State.REFUSED, State.IDLE) and self._preview is None and self.line.text().strip():
+            self._edited(self.line.text())  # it came back: shown anew before it is recorded
         elif not self.settle.is_over:
             return
         elif self.state is State.ASKING:
@@ -306,10 +297,24 @@ class LogStrip(QFrame):
         self.line.clear()
         self._forget_preview()
         self._become(State.AWAITED, escape(self.tr("Recording...")))
+        self._lines.send(Sent(request.episode, self._label, request.line))
         self._model.ask(entry.log_line, request, done=self._done, failed=self._failed)
 
     def _done(self, outcome: Outcome[Recorded]) -> None:
+        self._lines.taken()
         self.take(outcome.value)
+
+    def _failed(self, failure: Failure) -> None:
+        """Not recorded: the line comes back, unless another is being typed or another patient is in hand."""
+        sent = self._lines.failed()
+        self._put_back()
+        lost = self.tr("Not recorded for {label}: {line}.").format(label=sent.label, line=sent.line)
+        self._become(State.REFUSED, marked(lost, sentence(failure.message, self._reader())))
+
+    def _put_back(self) -> None:
+        """Put the line that could not be recorded back for its patient; Enter shows anew what it would record."""
+        if self._record is not None and not self.line.text():
+            self.line.setText(self._lines.back_for(self._record.key))
 
     def take(self, recorded: Recorded) -> None:
         """Something was recorded, here or by a form: remember it for the undo, and say so."""
@@ -319,14 +324,11 @@ class LogStrip(QFrame):
         self._become(State.TOLD, marked(f"{whom}, {what}.", self.tr("Ctrl+Z undoes it.")))
         self.recorded.emit(recorded)
 
-    def _failed(self, failure: Failure) -> None:
-        self._become(State.REFUSED, marked(self.tr("Not recorded."), sentence(failure.message, self._reader())))
-
     # undo
 
     def remember(self, recorded: Recorded) -> None:
         """Something recorded elsewhere in the window (a form, a correction) that undo shall take back."""
-        self._undo = [*self._undo, recorded][-MOST_UNDO:]
+        self._undo.push(recorded)
 
     @property
     def can_undo(self) -> bool:
@@ -341,19 +343,32 @@ class LogStrip(QFrame):
         if not self._undo:
             self._become(State.TOLD, escape(self.tr("Nothing to undo.")))
             return
-        last = self._undo.pop()
+        last = self._undo.take()
         request = correction.UndoRequest(last.episode, last.ids)
-        self._model.ask(correction.undo, request, done=self._undone, failed=self._failed)
+        self._model.ask(correction.undo, request, done=self._undone, failed=self._not_undone)
+
+    def _not_undone(self, failure: Failure) -> None:
+        """What somebody has changed since can never be taken back; anything else may be tried again."""
+        if failure.message.key == "undo.superseded":
+            self._undo.taken_back()
+        else:
+            self._undo.failed()
+        self._become(State.REFUSED, marked(self.tr("Not undone."), sentence(failure.message, self._reader())))
 
     def _undone(self, outcome: Outcome[Recorded]) -> None:
-        names = ", ".join(dict.fromkeys(channel_name(e.channel) for e in outcome.value.entries))
-        self._become(
-            State.TOLD,
-            marked(self.tr("Undone: {what}.").format(what=names), self.tr("The record keeps both.")),
-        )
+        self._undo.taken_back()
+        names = undone_words(outcome.value.entries)
+        label = self._labels.get(outcome.value.episode, outcome.value.episode)
+        told = self.tr("Undone for {label}: {what}.").format(label=label, what=names)
+        told = marked(told, self.tr("The record keeps both."))
+        self._become(State.TOLD, told)
         self.recorded.emit(outcome.value)
 
     # words
+
+    def say_of(self, episode: str, text: str) -> None:
+        """Say something as soon as that episode is in hand: one that was just begun has no figures yet."""
+        self._news = {episode: text}
 
     def say(self, text: str) -> None:
         """Say something under the line."""

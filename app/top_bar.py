@@ -60,7 +60,7 @@ class TopBar(QWidget):
         pretended = session.clock.pretended is not None
         self.moment.setProperty("pill", pretended or session.as_of is not None)
         if pretended:
-            text = self.tr("Pretended clock: {time}").format(time=wall(at, zone))
+            text = self.tr("Pretended: {time}").format(time=wall(at, zone))
         elif session.as_of is not None:
             text = self.tr("As of {time}").format(time=wall(at, zone))
         else:
@@ -71,6 +71,7 @@ class TopBar(QWidget):
             text += self.tr(", as known {time}").format(time=wall(session.as_known_at, zone))
         self.moment.setText(text)
         self.moment.setAccessibleName(text)
+        self.moment.setToolTip(self.tr("The clock of the sample stands still in the past.") if pretended else "")
         self.moment.style().unpolish(self.moment)
         self.moment.style().polish(self.moment)
         self.moment.updateGeometry()

@@ -80,8 +80,9 @@ class WardFeed(QObject):
     def _answer(self, outcome: Outcome[WardAnswer]) -> None:
         answer = outcome.value
         self._policy = answer.policy
-        if self._all_wanted:
-            self._answers.clear()
+        asked = tuple(self._answers) if self._all_wanted else tuple(self._wanted)
+        for key in asked:  # one of which nothing stands any more gives no answer
+            self._answers.pop(key, None)
         self._all_wanted = False
         self._wanted.clear()
         for one in answer.episodes:

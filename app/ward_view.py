@@ -21,6 +21,7 @@ from app.shift import Shift
 from app.theme import Theme, Tier
 from app.ward.lane_words import LaneWords, OnWard, strongest_flag
 from app.ward.legend import Legend
+from app.ward.moves import told_apart
 from app.ward.ordering import Order, Shown, first_to_see, ordered, shown
 from app.ward.see_first import SeeFirst
 from app.words import sentence
@@ -184,7 +185,7 @@ class WardView(QWidget):
         labels = [f.label for f in ward]
         lanes = [
             self._marked(words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1))
-            for f in ordered(shown(ward, self._shown, self.search.text()), self._order)
+            for f in ordered(shown(ward, self._shown, self.search.text(), self._former()), self._order)
         ]
         self._tell_first(words)
         self._tell_shift(content)
@@ -204,6 +205,10 @@ class WardView(QWidget):
         )
         self.lanes.setAccessibleDescription("\n".join(x.sentence for x in lanes) or self._empty_word())
         self.status.say(self.lanes.sentence_of_selection())
+
+    def _former(self) -> dict[str, tuple[str, ...]]:
+        """The beds and places that each episode was in before, to be found by."""
+        return {key: tuple(m.before for m in e.moves) for key, e in self._by_key.items() if e.moves}
 
     def mark_later(self, counts: Mapping[str, int]) -> None:
         """Mark lanes whose record holds more now of this time than it did then; {} where the window is live."""
@@ -227,7 +232,9 @@ class WardView(QWidget):
             return
         flag = strongest_flag(top)
         why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)
-        self.first.show_first(top.episode, top.label, why, Tier(flag.tier) if flag is not None else None)
+        shared = sum(e.figures.label == top.label for e in self._content.episodes) > 1
+        label = told_apart(top, self._content.as_of, self._content.zone) if shared else top.label
+        self.first.show_first(top.episode, label, why, Tier(flag.tier) if flag is not None else None)
 
     def _tell_shift(self, content: WardContent) -> None:
         kind = self.tr("Night shift") if content.shift.night else self.tr("Day shift")

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from app.deeds.forms import FormDeeds
 from app.operations import flag as flag_operations
 from app.operations.outcome import Outcome
@@ -45,10 +47,17 @@ class LogDeeds(FormDeeds):
         window = self.window
         self._begin_form = BeginForm("", self.model, window.preferences.gas_unit, window.theme, window)
         self._begin_form.recorded.connect(self._episode_begun)
-        self._begin_form.open()
+        self.show_form(self._begin_form)
 
-    def _episode_begun(self, _ids: object) -> None:
-        self.model.select(self._begin_form.begun)
+    def openers(self) -> dict[str, Callable[[], None]]:
+        return {**super().openers(), "BeginForm": self.do_new_episode}
+
+    def _episode_begun(self, recorded: Recorded) -> None:
+        self.strip.remember(recorded)
+        self.model.select(recorded.episode)
+        label = next((e.words for e in recorded.entries if e.channel == "label"), recorded.episode)
+        told = self.tr("{label} has begun. Ctrl+Z takes the whole episode back.").format(label=label)
+        self.strip.say_of(recorded.episode, told)
 
     # flags
 

@@ -16,6 +16,7 @@ from app.forms.previewed_form import PreviewedForm
 from app.forms.readiness import ABSOLUTE, RELATIVE
 from app.forms.readiness_card import ReadinessCard
 from app.forms.running_card import RunningCard
+from app.forms.typed_time import typed_iso, typed_time
 from app.operations import episode
 from app.operations.episode import BeginRequest, Given
 from app.phrases import channel_name
@@ -24,7 +25,6 @@ from app.ward.lane_words import indication_word
 from app.words import sentence
 from core.record.channels import CEILINGS, CHANNELS, HYPERCAPNIC_RISK, INDICATIONS, RESUSCITATION, Group
 from core.record.instant import Instant
-from core.record.local_time import zoned_iso
 from core.record.message import Message, RecordError
 
 _WORDS = ("label", "location", "contact", "home_support")
@@ -157,23 +157,13 @@ class BeginForm(PreviewedForm):
         return text + self.gas_unit if text and key == "usual_paco2" else text
 
     def _iso(self, text: str) -> str:
-        at = self._at(text)
-        return "" if at is None else zoned_iso(at, self.model.session.zone)
-
-    def _at(self, text: str) -> Instant | None:
-        """A typed time of day as the moment it last was; None where nothing is typed."""
-        from core.record.log_line import read_line
-
-        if not text.strip():
-            return None
-        now, zone = self.model.session.now(), self.model.session.zone
-        return read_line(f"{text} checked no change", now=now, zone=zone, in_force=episode.NO_SETTINGS).at
+        return typed_iso(text, self.model.session.now(), self.model.session.zone)
 
     def _given(self) -> Iterable[Given]:
         now = self.model.session.now()
         gas, settings = self.gas.typed(), self.running.typed()
         if gas:
-            at = self._at(self.gas_time.text())
+            at = typed_time(self.gas_time.text(), now, self.model.session.zone)
             yield Given(now if at is None else at, gas)
         if settings:
             yield Given(now, settings)

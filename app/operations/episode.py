@@ -6,12 +6,12 @@ import re
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from difflib import get_close_matches
-from math import nan
 from typing import TYPE_CHECKING
 
 from app.operations import policy
 from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome
+from app.operations.recording import Recorded, append
 from core.judgement.entry_doubts import gas_doubts
 from core.record.channels import Kind, channel
 from core.record.entries import from_reading
@@ -20,14 +20,13 @@ from core.record.instant import Instant
 from core.record.local_time import check_not_future
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
-from core.record.settings import Settings
+from core.record.settings import NO_SETTINGS
 
 if TYPE_CHECKING:
     from storage.store import Store
 
 MOST_KEY = 60
 _NUMBER_UNIT = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))\s*(.*)")
-NO_SETTINGS = Settings(None, nan, nan, nan, nan, nan, nan, nan, None)
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,22 +83,20 @@ def record(store: Store, who: str, now: Instant, request: Record) -> Outcome[Epi
     return Outcome(load(store, request.episode, request.as_known_at), store.head())
 
 
-def begin(store: Store, who: str, now: Instant, request: BeginRequest) -> Outcome[tuple[str, ...]]:
-    """Begin an episode with its profile; the ids of its entries.
+def begin(store: Store, who: str, now: Instant, request: BeginRequest) -> Outcome[Recorded]:
+    """Begin an episode with its profile. Undo takes back every entry: nothing of it stands then.
 
     Raises:
         RecordError: `episode.exists`, `episode.bad_key`, or what is wrong with a fact.
     """
     key = checked_key(request.episode)
-    if store.has_episode(key):
-        raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
+    _check_free(store, key)
     entries = [
         from_reading(key, at, reading, by=who, zone=request.zone, confirmed=request.confirmed)
         for at, readings in _read(request, key, now)
         for reading in readings
     ]
-    receipt = store.append(entries, by=who, operation="episode.begin", now=now)
-    return Outcome(receipt.ids, receipt.last_seq)
+    return append(store, key, tuple(entries), who, "episode.begin", now)
 
 
 def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -> Outcome[Beginning]:
@@ -109,13 +106,18 @@ def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -
         RecordError: as `begin`.
     """
     key = checked_key(request.episode)
-    if store.has_episode(key):
-        raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
+    _check_free(store, key)
     read = _read(request, key, now)
     asked = [doubt for _, readings in read for r in readings for doubt in r.doubts]
     for _, readings in read[1:]:
         asked += gas_doubts(readings, NO_SETTINGS, policy.in_force(store))
     return Outcome(Beginning(key, read, tuple(asked)), store.head())
+
+
+def _check_free(store: Store, key: str) -> None:
+    """Refuse a key in use; one whose episode was taken back whole may begin again."""
+    if store.has_episode(key) and load(store, key).standing:
+        raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
 
 
 def _read(request: BeginRequest, key: str, now: Instant) -> tuple[tuple[Instant, tuple[Reading, ...]], ...]:
@@ -124,10 +126,12 @@ def _read(request: BeginRequest, key: str, now: Instant) -> tuple[tuple[Instant,
     moments = [(at, dict(request.facts) or {"label": key}), *((g.at, g.values) for g in request.given)]
     for moment, _ in moments:
         check_not_future(moment, now)
-    return tuple((moment, tuple(_typed(name, text) for name, text in values.items())) for moment, values in moments)
+    return tuple(
+        (moment, tuple(typed_reading(name, text) for name, text in values.items())) for moment, values in moments
+    )
 
 
-def _typed(name: str, text: str) -> Reading:
+def typed_reading(name: str, text: str) -> Reading:
     """A value as typed, its unit written at the number or behind it."""
     c = channel(name)
     match = _NUMBER_UNIT.fullmatch(text.strip()) if c.kind is Kind.NUMBER else None

@@ -124,7 +124,10 @@ def _stands(record: Episode, request: WardRequest) -> bool:
     """Whether an episode had begun by the moment and had not ended long before it."""
     if request.episodes is not None:
         return bool(record.standing)  # an episode that nothing was known of yet does not stand on the ward
-    if record.first_at is None or record.first_at > request.as_of:
+    if not record.standing:
+        return False  # begun, and taken back
+    first = record.standing[0].entry.at if record.first_at is None else record.first_at
+    if first > request.as_of:
         return False
     ended = record.latest("ended_at")
     return request.everything or ended is None or ended > request.as_of - RECENTLY_ENDED

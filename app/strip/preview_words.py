@@ -23,6 +23,7 @@ from core.record.settings import Settings, SettingsInForce
 
 translate = QCoreApplication.translate
 OWN_RATE_AGE = HOUR
+MOST_NAMES = 6
 _GAS_PRESSURES = ("paco2", "pao2", "usual_paco2")
 
 
@@ -86,6 +87,15 @@ def recorded_words(entries: Sequence[NewEntry], now: Instant, reader: Reader) ->
     ]
     moments = dict.fromkeys(_when(e.at, now, reader.zone) for e in entries)
     return f"{', '.join(moments)}: {', '.join(values)}"
+
+
+def undone_words(entries: Sequence[NewEntry]) -> str:
+    """What was taken back: the names of its values, and how many more where they are many."""
+    names = list(dict.fromkeys(channel_name(e.channel) for e in entries))
+    if len(names) <= MOST_NAMES:
+        return ", ".join(names)
+    told = translate("strip", "{names} and {count} more")
+    return told.format(names=", ".join(names[: MOST_NAMES - 1]), count=len(names) - MOST_NAMES + 1)
 
 
 def _when(at: Instant, now: Instant, zone: str) -> str:

@@ -34,7 +34,7 @@ from app.phrases import (
     verdict_or_none,
 )
 from app.theme import Tier, Verdict, tier_word
-from app.ward.moves import Move, move_sentence
+from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due
 from app.words import Reader, sentence
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, JudgedGas, ResponseFigure
@@ -86,7 +86,7 @@ class LaneWords:
         return Lane(
             key=f.episode,
             title=f.label,
-            subtitle=self._subtitle(f, ambiguous),
+            subtitle=self._subtitle(f, ambiguous, moved_word(on_ward.moves, self.zone)),
             support=tuple(self._pieces(course)),
             items=tuple(sorted((*self._items(f, course), *self._moves(on_ward.moves)), key=lambda i: i.at)),
             state=state_of(gas.state) if gas is not None else None,
@@ -106,7 +106,7 @@ class LaneWords:
 
     # words of the whole lane
 
-    def _subtitle(self, f: EpisodeFigures, ambiguous: bool) -> str:
+    def _subtitle(self, f: EpisodeFigures, ambiguous: bool, moved: str) -> str:
         s = f.support
         told = self._indication(f)
         if ambiguous and s.since is not None:
@@ -117,6 +117,8 @@ class LaneWords:
             told = f"{told}, {f.episode}"
         if off_mask_word(f, self.zone):
             return translate("ward", "{indication}, mask off").format(indication=told)
+        if moved:
+            return f"{told}, {moved}"
         return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
 
     def _state_word(self, f: EpisodeFigures, gas: GasFigure | None) -> str:

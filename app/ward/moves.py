@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 from typing import TYPE_CHECKING
@@ -15,6 +15,7 @@ from core.record.instant import DAY, Instant
 
 if TYPE_CHECKING:
     from app.operations.figures import EpisodeAnswer
+    from core.judgement.shapes import EpisodeFigures
 
 translate = QCoreApplication.translate
 CHANNELS = ("label", "location")
@@ -53,8 +54,21 @@ def label_told_apart(answers: Mapping[str, EpisodeAnswer], key: str, now: Instan
     figures = answers[key].figures
     if not any(a.figures.label == figures.label for k, a in answers.items() if k != key):
         return figures.label
+    return told_apart(figures, now, zone)
+
+
+def told_apart(figures: EpisodeFigures, now: Instant, zone: str) -> str:
+    """The label of an episode that shares it with another, and since when it runs."""
     since = figures.support.since
     if since is None:
-        return f"{figures.label} ({key})"
+        return f"{figures.label} ({figures.episode})"
     told = clock(since, zone) if now - since < DAY else wall(since, zone)
     return translate("ward", "{label} (from {time})").format(label=figures.label, time=told)
+
+
+def moved_word(moves: Sequence[Move], zone: str) -> str:
+    """The newest bed that an episode came from, for a narrow line; "" where it never moved."""
+    beds = [m for m in moves if m.channel == "label"]
+    if not beds:
+        return ""
+    return translate("ward", "from {before} {time}").format(before=beds[-1].before, time=clock(beds[-1].at, zone))

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from enum import StrEnum
+from types import MappingProxyType
 
 from app.headline import ever_acidotic, headline
 from app.theme import Verdict
@@ -17,6 +18,7 @@ _URGENT = ("overdue", "soon")
 GAS = ("gas", "repeat_gas")
 CARE = ("skin_check", "mask_check", "complete_score", "ceiling")
 _OPEN_FLAG = ("raised", "seen")
+_NOWHERE: Mapping[str, Sequence[str]] = MappingProxyType({})
 
 
 class Order(StrEnum):
@@ -79,13 +81,16 @@ def ordered(ward: Sequence[EpisodeFigures], order: Order) -> tuple[EpisodeFigure
     return tuple(sorted(ward, key=key))
 
 
-def shown(ward: Sequence[EpisodeFigures], which: Shown, text: str = "") -> tuple[EpisodeFigures, ...]:
-    """The episodes that pass the filter and hold `text` in label, location or indication: as it is typed
-    where any does, else word by word."""
+def shown(
+    ward: Sequence[EpisodeFigures], which: Shown, text: str = "", former: Mapping[str, Sequence[str]] = _NOWHERE
+) -> tuple[EpisodeFigures, ...]:
+    """The episodes that pass the filter and hold `text` in label, location, indication, or a bed or place they were
+    in before (`former`, by episode): as it is typed where any does, else word by word."""
     passed = tuple(f for f in ward if _passes(f, which))
     wanted = " ".join(text.casefold().split())
-    whole = tuple(f for f in passed if wanted in _searched(f))
-    return whole or tuple(f for f in passed if all(w in _searched(f) for w in wanted.split()))
+    held = {f.episode: _searched(f, former.get(f.episode, ())) for f in passed}
+    whole = tuple(f for f in passed if wanted in held[f.episode])
+    return whole or tuple(f for f in passed if all(w in held[f.episode] for w in wanted.split()))
 
 
 def _passes(f: EpisodeFigures, which: Shown) -> bool:
@@ -108,8 +113,8 @@ def _responds_poorly(f: EpisodeFigures) -> bool:
     return told.verdict is Verdict.NO_CLEAR_CHANGE and not settled
 
 
-def _searched(f: EpisodeFigures) -> str:
-    parts = (f.label, f.episode, f.profile.get("location"), f.profile.get("indication"))
+def _searched(f: EpisodeFigures, former: Sequence[str]) -> str:
+    parts = (f.label, f.episode, f.profile.get("location"), f.profile.get("indication"), *former)
     return " ".join(str(x) for x in parts if x).casefold()
 
 

@@ -68,6 +68,10 @@ class Settings:
         return nan if self.mode is None and not self.is_cpap else 0.0
 
 
+NO_SETTINGS = Settings(None, nan, nan, nan, nan, nan, nan, nan, None)
+"""Nothing was ever recorded."""
+
+
 @dataclass(frozen=True, slots=True)
 class Steps:
     """A step function: value `v[i]` stands from `t[i]` until the next. Shapes (n,)."""

@@ -297,7 +297,7 @@ def test_comparing(qtbot, window):
 
 
 def test_the_pretended_clock_and_the_person_are_always_stated(window):
-    assert window.top.moment.text() == "Pretended clock: 28-Mar-2026 05:30"
+    assert window.top.moment.text() == "Pretended: 28-Mar-2026 05:30"
     assert window.top.person.text() == "AB"
     window.doers.file.become("XY")
     assert window.top.person.text() == "XY"

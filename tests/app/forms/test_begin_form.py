@@ -7,6 +7,7 @@ from app.forms.begin_form import BeginForm
 from app.forms.readiness import ABSOLUTE, ITEMS, KINDS, of_kind
 from core.record.channels import CHANNELS, YES_NO
 from core.record.instant import parse
+from storage.store import Store
 from tests.support.open_window import NOW, make_store, open_window, settled, until
 
 Key = Qt.Key
@@ -158,3 +159,31 @@ def test_escape_begins_nothing(qtbot, window):
     window.model.look_for_changes()
     settled(qtbot, window)
     assert window.model.session.head == head
+
+
+def test_a_begun_episode_is_taken_back_whole_and_stays_in_the_ledger(qtbot, window):
+    form = opened(qtbot, window)
+    qtbot.keyClicks(form.words["label"], "Bed 11")
+    form.indication.setCurrentIndex(form.indication.findData("copd"))
+    key = begin(qtbot, window, form).figures.episode
+    settled(qtbot, window)
+    assert key in window.pages.ward.shown_keys()
+    window.model._ticked()  # all are asked for again: one with nothing but its profile stands on the ward too
+    settled(qtbot, window)
+    assert key in window.feed.answers
+    assert "Bed 11 has begun" in window.strip.plain()
+    window.actions_by_key["undo"].trigger()
+    until(qtbot, lambda: key not in window.pages.ward.shown_keys())
+    settled(qtbot, window)
+    assert "Undone" in window.strip.plain()
+    assert window.model.session.selection in window.feed.answers
+    assert window.strip.patient == window.model.session.selection
+    with Store.open(window.model.session.store_path) as store:
+        kept = store.entries(key)
+        assert {e.action for e in kept} == {"assert", "withdraw"}
+        assert not store.episode(key).standing
+    window.actions_by_key["new_episode"].trigger()
+    again = next(d for d in window.findChildren(BeginForm) if d.isVisible())
+    qtbot.keyClicks(again.words["label"], "Bed 11")
+    # in the same minute, so by the same key: what was taken back is no hindrance
+    assert begin(qtbot, window, again).figures.episode == key

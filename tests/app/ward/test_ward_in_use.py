@@ -40,6 +40,7 @@ def test_two_patients_of_one_bed_are_told_apart_wherever_a_line_is_logged(qtbot,
     assert lane(window, "bed-7").title == lane(window, "bed-7-second").title == "Bed 7"
     assert "from 00:00" in lane(window, "bed-7").subtitle
     assert "bed-7-second" in lane(window, "bed-7-second").subtitle  # since when it runs is not recorded
+    assert "See first: Bed 7 (" in window.pages.ward.first.text()
     window.select("bed-7")
     assert window.strip.whom.text() == "Bed 7 (from 00:00)"
     window.select("bed-7-second")
@@ -63,8 +64,10 @@ def test_a_bed_move_shows_and_a_corrected_label_is_none(qtbot, window):
     assert [i.sentence for i in ticks] == ["04:45 moved from Bed 7 to Bed 12"]
     assert ticks[0].word == "from Bed 7"
     assert window.strip.whom.text() == "Bed 12"
-    window.pages.ward.search.setText("bed 12")
-    assert window.pages.ward.shown_keys() == ("bed-7",)
+    assert lane(window, "bed-7").subtitle == "COPD, from Bed 7 04:45"
+    for typed in ("bed 12", "Bed 7"):  # where the patient is, and where the patient was
+        window.pages.ward.search.setText(typed)
+        assert window.pages.ward.shown_keys() == ("bed-7",)
     window.pages.ward.search.clear()
     window.strip.undo()
     until(qtbot, lambda: lane(window, "bed-7").title == "Bed 7")

@@ -1,0 +1,29 @@
+"""A time of day in a field of a form, read as the log strip reads it: 14:20, yesterday 23:40, 20m ago."""
+
+from __future__ import annotations
+
+from core.record.instant import Instant
+from core.record.local_time import zoned_iso
+from core.record.log_line import read_line
+from core.record.settings import NO_SETTINGS
+
+
+def typed_time(text: str, now: Instant, zone: str) -> Instant | None:
+    """The moment that is typed; None where nothing is.
+
+    Raises:
+        RecordError: `time.*`, `line.*`: what is wrong with it.
+    """
+    if not text.strip():
+        return None
+    return read_line(f"{text} checked no change", now=now, zone=zone, in_force=NO_SETTINGS).at
+
+
+def typed_iso(text: str, now: Instant, zone: str) -> str:
+    """The moment as ISO 8601 with its offset, as values of instants are kept; "" where nothing is typed.
+
+    Raises:
+        RecordError: as `typed_time`.
+    """
+    at = typed_time(text, now, zone)
+    return "" if at is None else zoned_iso(at, zone)
