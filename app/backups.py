@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from hashlib import sha256
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -24,6 +25,19 @@ def usual_folder(store: Path) -> Path:
     return store.parent / "backups"
 
 
+def folder_for(chosen: str, store: Path) -> Path:
+    """Where a store's backups lie. In a chosen folder each store has one of its own: of two wards' stores with one
+    name, neither may expire the other's backups.
+
+    >>> folder_for("", Path("/data/ward.luffmark")).as_posix()
+    '/data/backups'
+    """
+    if not chosen:
+        return usual_folder(store)
+    own = sha256(str(store.absolute()).encode("utf-8", "replace")).hexdigest()[:8]
+    return Path(chosen) / f"{store.stem}-{own}"
+
+
 class BackupKeeper(QObject):
     """Follows one open store. `stands` after each look; `failed` with what went wrong."""
 
@@ -35,7 +49,7 @@ class BackupKeeper(QObject):
     def __init__(self, model: SessionModel, folder: str, witness: str, parent: QObject) -> None:
         super().__init__(parent)
         self._model = model
-        self.folder = Path(folder) if folder else usual_folder(model.session.store_path)
+        self.folder = folder_for(folder, model.session.store_path)
         self.witness = witness
         self.newest: Rotated | None = None
         self._look = QTimer(self)
@@ -44,7 +58,7 @@ class BackupKeeper(QObject):
         self._first = QTimer(self)
         self._first.setSingleShot(True)
         self._first.setInterval(FIRST_MS)
-        self._first.timeout.connect(self.look)
+        self._first.timeout.connect(self._look_first)
 
     def start(self) -> None:
         """Begin to look. A store that cannot be written to has nothing new; the sample is thrown away."""
@@ -62,12 +76,16 @@ class BackupKeeper(QObject):
         """Take a backup if one is due."""
         self._ask(now=False)
 
+    def _look_first(self) -> None:
+        """Soon after opening every page is read once: by a backup, or by itself where none is due."""
+        self._ask(now=False, pages=True)
+
     def take_now(self) -> None:
         """Take a backup, due or not."""
         self._ask(now=True)
 
-    def _ask(self, *, now: bool) -> None:
-        request = Rotation(self.folder, now, self.witness)
+    def _ask(self, *, now: bool, pages: bool = False) -> None:
+        request = Rotation(self.folder, now, self.witness, pages)
         self._model.ask(operations.rotate, request, done=self._done, failed=self._failed)
 
     def _done(self, outcome: Outcome[Rotated]) -> None:

@@ -1,4 +1,5 @@
-"""Keeps what is being typed on the log strip, in the store and encrypted with it, so that a crash loses no word.
+"""Keeps what is being typed, in the store and encrypted with it, so that a crash loses no word: the log strip's line,
+and by `form_drafts` the form that is open.
 
 Each window holds a lock file in the temporary folder, named by a random number alone. A draft whose window's lock is
 free belongs to a program that ended, and is put back on the line.
@@ -8,12 +9,15 @@ from __future__ import annotations
 
 import json
 from collections.abc import Mapping
+from pathlib import Path
 from typing import TYPE_CHECKING
 from uuid import uuid4
 
-from PySide6.QtCore import QDir, QLockFile, QObject, QTimer, Signal
+from PySide6.QtCore import QDir, QObject, QTimer, Signal
 
 from app.failure import Failure
+from app.form_drafts import AFTER_MS, FORM, FormDrafts
+from app.left_behind import is_free, own_lock
 from app.operations import draft as operations
 from app.operations.draft import Draft
 from app.operations.outcome import Outcome
@@ -21,8 +25,6 @@ from app.operations.outcome import Outcome
 if TYPE_CHECKING:
     from app.opened import Opened
 
-AFTER_MS = 1_200
-"""How long the line rests before it is kept: not at every letter."""
 PREFIX = "strip "
 
 
@@ -37,15 +39,14 @@ class DraftKeeper(QObject):
         self._o = opened
         mark = uuid4().hex
         self._name = PREFIX + mark
-        self._guard = QLockFile(_lock_path(mark))
-        self._guard.setStaleLockTime(0)  # by its program alone, never by its age
-        self._guard.tryLock(0)
+        self.forms = FormDrafts(opened.model, mark, self)
+        self._guard = own_lock(_lock_path(mark))
         self._kept = ""
         self._found: dict[str, str] | None = None
         self._rest = QTimer(self)
         self._rest.setSingleShot(True)
         self._rest.setInterval(AFTER_MS)
-        self._rest.timeout.connect(self.keep)
+        self._rest.timeout.connect(self._keep_line)
         opened.strip.line.textChanged.connect(self._typed)
         opened.feed.refreshed.connect(self._look)
 
@@ -54,7 +55,11 @@ class DraftKeeper(QObject):
         self._o.model.ask(operations.load, None, done=self._loaded, failed=self._failed)
 
     def keep(self) -> None:
-        """Keep the line as it is now; forget it where it is empty."""
+        """Keep the line and the form as they are now; forget what is empty."""
+        self.forms.keep()
+        self._keep_line()
+
+    def _keep_line(self) -> None:
         self._rest.stop()
         session, text = self._o.model.session, self._o.strip.line.text().strip()
         if session.read_only or text == self._kept:
@@ -67,6 +72,7 @@ class DraftKeeper(QObject):
     def close(self) -> None:
         """The store closes: what is still on the line is kept, and may be taken up by the next window."""
         self.keep()
+        self.forms.close()
         self._o.strip.line.textChanged.disconnect(self._typed)
         self._guard.unlock()
 
@@ -74,22 +80,18 @@ class DraftKeeper(QObject):
         if text.strip():
             self._rest.start()
         elif self._kept:
-            self.keep()
+            self._keep_line()
 
     def _loaded(self, outcome: Outcome[Mapping[str, str]]) -> None:
-        lost = {n: t for n, t in outcome.value.items() if n.startswith(PREFIX) and self._is_lost(n)}
-        self._found = lost
+        lost = {n: t for n, t in outcome.value.items() if n.startswith((PREFIX, FORM)) and self._is_lost(n)}
+        self._found = {n: t for n, t in lost.items() if n.startswith(PREFIX)}
         self._look()
+        self.forms.take_lost({n: t for n, t in lost.items() if n.startswith(FORM)})
 
     def _is_lost(self, name: str) -> bool:
-        if name == self._name:
-            return False
-        guard = QLockFile(_lock_path(name.removeprefix(PREFIX)))
-        guard.setStaleLockTime(0)
-        if not guard.tryLock(0):
-            return False
-        guard.unlock()
-        return True
+        """Whether the window that kept it is gone."""
+        mark = name.partition(" ")[2]
+        return mark != self._name.removeprefix(PREFIX) and is_free(_lock_path(mark))
 
     def _look(self, _content: object = None) -> None:
         """Put the newest lost line back, once its patient is on the ward's page."""
@@ -103,7 +105,7 @@ class DraftKeeper(QObject):
         self._o.model.select(fact["episode"])
         self._o.strip.set_patient(answer.record, answer.figures.label, self._o.model.session.zone, "mmHg")
         self._o.strip.set_text(fact.get("line", ""))
-        self.keep()
+        self._keep_line()
         for name in found:
             self._o.model.ask(operations.keep, Draft(name, None), done=self._done, failed=self._failed)
         self.recovered.emit(answer.figures.label)
@@ -116,8 +118,8 @@ class DraftKeeper(QObject):
         self._kept = ""
 
 
-def _lock_path(mark: str) -> str:
-    return QDir.temp().filePath(f"luffmark-{mark}.lock")
+def _lock_path(mark: str) -> Path:
+    return Path(QDir.temp().filePath(f"luffmark-{mark}.lock"))
 
 
 def _fact(text: str) -> dict[str, str]:

@@ -19,6 +19,7 @@ from PySide6.QtWidgets import (
 
 from app.cautions import cautions, intended_use
 from app.flow_row import FlowRow
+from app.steps import Step, word_of
 from app.theme import Theme
 
 MOST_WIDTH = 960
@@ -33,6 +34,8 @@ class FirstPage(QWidget):
     open_wanted = Signal()
     file_wanted = Signal()
     recent_wanted = Signal(str)
+    step_wanted = Signal(str)
+    """A step out of what is said, by its key."""
     cautions_read = Signal()
 
     def __init__(self, theme: Theme, recent: Sequence[str], cautions_seen: bool) -> None:
@@ -53,23 +56,60 @@ class FirstPage(QWidget):
         self.recent: list[QPushButton] = []
         self.said = _text("")
         self.said.setProperty("role", "strong")
-        self.said.hide()
+        self.steps: dict[str, QPushButton] = {}
+        self._trouble = QFrame()
+        self._trouble.setProperty("banner", True)
+        self._trouble.hide()
+        self._add_title()
+        self._add_trouble()
         self._add_cautions(cautions_seen)
         self._add_ways()
         self._add_recent(recent)
         self._centre(middle)
         self._allow(cautions_seen)
 
-    def say(self, text: str) -> None:
-        """Say why nothing could be opened."""
+    def say(self, text: str, steps: Sequence[Step] = ()) -> None:
+        """Say why nothing could be opened, with the steps that lead on as buttons."""
         self.said.setText(text)
-        self.said.show()
+        for button in self.steps.values():
+            button.deleteLater()
+        self.steps = {}
+        for step in steps:
+            button = self.steps[step.value] = QPushButton(word_of(step))
+            button.setProperty("step", step.value)
+            button.setProperty("role", "small" if self.steps.keys() != {step.value} else "primary")
+            button.clicked.connect(self._step)
+            self._ways_out.addWidget(button)
+        self._inside.setVisible(bool(steps))
+        self._trouble.setVisible(bool(text))
+        if self.steps:
+            next(iter(self.steps.values())).setFocus()
 
-    def _add_cautions(self, seen: bool) -> None:
+    def _add_trouble(self) -> None:
+        """What went wrong stands over everything else, and what can be done with it."""
         px = self._theme.px
+        column = QVBoxLayout(self._trouble)
+        column.setContentsMargins(px(14), px(10), px(14), px(12))
+        column.setSpacing(px(10))
+        column.addWidget(self.said)
+        self._inside = QWidget()
+        self._ways_out = FlowRow(self._inside, px(8))
+        self._ways_out.setContentsMargins(0, 0, 0, 0)
+        column.addWidget(self._inside)
+        self._column.addWidget(self._trouble)
+
+    def _step(self) -> None:
+        button = self.sender()
+        if button is not None:
+            self.step_wanted.emit(str(button.property("step")))
+
+    def _add_title(self) -> None:
         title = QLabel("Luffmark")
         title.setProperty("role", "display")
         self._column.addWidget(title)
+
+    def _add_cautions(self, seen: bool) -> None:
+        px = self._theme.px
         self._column.addWidget(_text(intended_use()))
         self._column.addSpacing(px(4))
         for caution in cautions():
@@ -94,12 +134,16 @@ class FirstPage(QWidget):
             button.clicked.connect(signal)
             row.addWidget(button)
         self._column.addWidget(ways)
-        self._column.addWidget(self.said)
         note = QLabel(self.tr("The sample shift is invented. It opens in a throw-away store."))
         note.setProperty("role", "caption")
         self._column.addWidget(note)
 
     def _add_recent(self, recent: Sequence[str]) -> None:
+        if recent:
+            heading = QLabel(self.tr("Opened before"))
+            heading.setProperty("role", "strong")
+            self._column.addSpacing(self._theme.px(4))
+            self._column.addWidget(heading)
         for path in recent[:MOST_RECENT]:
             button = QPushButton(f"{Path(path).name}    {Path(path).parent}")
             button.setProperty("role", "plain")

@@ -1,4 +1,4 @@
-"""What keeps the store safe while the window is open: notices, the lock, sign-in, drafts, backups."""
+"""What keeps the store safe while the window is open: notices, the lock, drafts, backups."""
 
 from __future__ import annotations
 
@@ -9,13 +9,17 @@ from PySide6.QtCore import QObject, QTimer
 from app.backups import BackupKeeper
 from app.draft_keeper import DraftKeeper
 from app.failure import Failure
-from app.lock import IdleWatch, Lock
-from app.lock_page import Way
+from app.form_drafts import LostForm
+from app.left_behind import sweep
+from app.lock_page import Way, Why
+from app.locking import Locking
 from app.notice_strip import NoticeStrip
+from app.notice_strip import Way as WayOn
 from app.notices import Surroundings
 from app.operations import store as store_operations
 from app.operations.outcome import Outcome
 from app.session import Changed, Session, SessionModel, What
+from app.steps import DAMAGE, Step, steps_out_of, word_of
 from app.theme import Theme
 from app.words import sentence
 from core.record.message import Message
@@ -26,8 +30,9 @@ if TYPE_CHECKING:
     from app.window import MainWindow
 
 BUSY = "store.busy_for_now"
-BACKUP, DISK, DRAFT = "backup", "disk", "draft"
+BACKUP, DISK, DRAFT, FORM, DAMAGED, LEFT = "backup", "disk", "draft", "form", "damaged", "left"
 """Subjects of notices that are no message of the store."""
+FORM_AGAIN = "form_again"
 RETRY_MS = 5_000
 """How often a store that another program holds is tried again."""
 
@@ -39,56 +44,75 @@ class Keeping(QObject):
         super().__init__(window)
         self._window = window
         self._model: SessionModel | None = None
-        self._drafts: DraftKeeper | None = None
+        self.drafts: DraftKeeper | None = None
         self.backups: BackupKeeper | None = None
-        self._busy, self._proven = False, ""
+        self._busy, self._left = False, ""
         self._told: tuple[str, ...] = ()
+        self._disk: Message | None = None
+        self._disks: tuple[Message, ...] = ()
         self.notices = NoticeStrip(window.theme)
         self.notices.again_wanted.connect(self._try_again)
+        self.notices.way_wanted.connect(self._take_way)
         self.surroundings = Surroundings(self)
         self.surroundings.told.connect(self._surroundings_told)
         self._retry = QTimer(self)
         self._retry.setInterval(RETRY_MS)
         self._retry.timeout.connect(self._try_again)
-        self.lock = Lock(window)
-        self.lock.page.pin_given.connect(self._pin_given)
-        self.lock.page.passphrase_given.connect(self._passphrase_given)
-        self.lock.page.opened.connect(self._unlocked)
-        self.watch = IdleWatch(self)
-        self.watch.idle.connect(self._idle)
+        self.locking = Locking(window)
+        self.lock, self.watch = self.locking.lock, self.locking.watch
 
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
         self.notices.set_theme(theme)
         self.lock.page.set_theme(theme)
 
+    def clean_up(self) -> None:
+        """Remove what a killed program left in the temporary folder, and say so where it was of a patient."""
+        found = sweep()
+        told = []
+        if found.handovers:
+            told.append(self.tr("The program was killed while a closed handover was open in another program: its "
+                                "copy in the temporary folder was removed now."))  # fmt: skip
+        if found.stuck:
+            text = self.tr("A copy of a closed handover cannot be removed: {path}. Close the program that shows it.")
+            told += [text.format(path=path) for path in found.stuck]
+        self._left = " ".join(told)
+        if self._model is not None:
+            self.notices.tell(LEFT, self._left)
+        elif self._left and self._window.first is not None:
+            self._window.first.say(self._left)
+
     def opened(self, opened: Opened) -> None:
         """A session is shown."""
         self._model = opened.model
+        self.locking.opened(opened.model)
         self.notices.forget()
-        self._drafts = DraftKeeper(opened, self)
-        self._drafts.recovered.connect(self._recovered)
+        self.notices.tell(LEFT, self._left)
+        self.drafts = DraftKeeper(opened, self)
+        self.drafts.recovered.connect(self._recovered)
+        self.drafts.forms.found.connect(self._form_found)
         kept = self._window.preferences
         self.backups = BackupKeeper(opened.model, kept.backup_folder, kept.witness_file, self)
         self.backups.stands.connect(self._backups_stand)
         self.backups.failed.connect(self._backup_failed)
         opened.model.changed.connect(self._changed)
+        opened.model.runner.troubled.connect(self._troubled)
         self.surroundings.start(opened.model.session.store_path)
 
     def closing(self) -> None:
         """The session ends; what is typed is kept."""
         self._retry.stop()
-        self.watch.stop()
         self.surroundings.stop()
-        if self._drafts is not None:
-            self._drafts.close()
-            self._drafts.deleteLater()
+        if self.drafts is not None:
+            self.drafts.close()
+            self.drafts.deleteLater()
         if self.backups is not None:
             self.backups.stop()
             self.backups.deleteLater()
             self.backups = None
-        self._model, self._drafts, self._busy, self._told, self._proven = None, None, False, (), ""
-        self.lock.unlock()
+        self._model, self.drafts, self._busy, self._told = None, None, False, ()
+        self._disk, self._disks, self._left = None, (), ""
+        self.locking.closing()
         self.notices.forget()
 
     # what may be done
@@ -108,8 +132,10 @@ class Keeping(QObject):
             return self.tr("Open for reading only: nothing can be recorded.")
         return ""
 
-    def title(self, session: Session) -> str:
+    def title(self, session: Session | None) -> str:
         """The window's title: which store, and whether anybody could read its file. Locked, it names nothing."""
+        if session is None:
+            return "Luffmark"
         name = session.store_path.name
         if self.lock.is_locked:
             return self.tr("Luffmark - locked")
@@ -122,60 +148,21 @@ class Keeping(QObject):
     @property
     def way(self) -> Way:
         """What opens the window again once it is locked."""
-        if self._model is None:
-            return Way.NOTHING
-        session = self._model.session
-        if session.has_people:
-            return Way.PIN
-        return Way.PASSPHRASE if session.encrypted else Way.NOTHING
+        return self.locking.way
 
-    def lock_now(self, person: str = "") -> None:
-        """Hide every screen until somebody proves who they are."""
-        if self._model is None or self.lock.is_locked:
-            return
-        if self._drafts is not None:
-            self._drafts.keep()
-        self.lock.lock(self.way, person)
-        self._window.tell_locked()
+    def lock_now(self, person: str = "", why: Why = Why.ASKED) -> None:
+        """Hide every screen until somebody proves who they are; what is typed is kept first."""
+        if self.drafts is not None and not self.lock.is_locked:
+            self.drafts.keep()
+        self.locking.lock_now(person, why)
 
     def set_lock_minutes(self, minutes: int) -> None:
         """Lock after another time."""
-        if self._model is not None and self.way is not Way.NOTHING:
-            self.watch.start(minutes)
+        self.locking.set_minutes(minutes)
 
-    def _idle(self) -> None:
-        if self._model is not None and self.way is not Way.NOTHING:
-            self.lock_now(self._model.session.person)
-
-    def _pin_given(self, initials: str, pin: str) -> None:
-        from app.operations import people
-
-        if self._model is not None:
-            self._model.ask(people.sign_in, people.SignIn(initials, pin), done=self._signed_in, failed=self._refused)
-
-    def _signed_in(self, outcome: Outcome[str]) -> None:
-        if self._model is not None:
-            self._proven = outcome.value
-            self._model.set_person(outcome.value)
-            self._window.prefer(person=outcome.value)
-            self._unlocked()
-
-    def _passphrase_given(self, secret: str) -> None:
-        from app.operations import passphrase
-
-        if self._model is not None:
-            self._model.ask(passphrase.unlock, secret, done=self._opened_with, failed=self._refused)
-
-    def _opened_with(self, _outcome: Outcome[None]) -> None:
-        self._unlocked()
-
-    def _refused(self, failure: Failure) -> None:
-        self.lock.page.refuse(sentence(failure.message, self._window.reader))
-
-    def _unlocked(self) -> None:
-        self.lock.unlock()
-        self.watch.touch()
-        self._window.tell_locked()
+    def take_proof(self, initials: str) -> None:
+        """Somebody has just made their PIN."""
+        self.locking.take_proof(initials)
 
     # news
 
@@ -184,20 +171,11 @@ class Keeping(QObject):
             self._described()
         elif changed.touches(What.POLICY):
             self._tell_notices()
-        self._ask_for_proof()
-
-    def _ask_for_proof(self) -> None:
-        """Where people sign in, nobody logs who has not: the store was opened, or the first person was added."""
-        if self._model is None or self.lock.is_locked:
-            return
-        session = self._model.session
-        if session.has_people and (not self._proven or session.person != self._proven):
-            self.lock_now(session.person)
-            self._model.set_person("")
+        self.locking.ask_for_proof()
 
     def _described(self) -> None:
         """The store says how it opened, and whether people sign in."""
-        if self._model is None or self._drafts is None:
+        if self._model is None or self.drafts is None:
             return
         session = self._model.session
         self._busy = any(n.key == BUSY for n in session.notices)
@@ -209,7 +187,7 @@ class Keeping(QObject):
             self._window.close_or_open_strip()
         self.set_lock_minutes(self._window.preferences.lock_minutes)
         if not session.read_only:
-            self._drafts.look_for_lost()
+            self.drafts.look_for_lost()
         if self.backups is not None:
             self.backups.start()
 
@@ -224,23 +202,54 @@ class Keeping(QObject):
         self._told = tuple(n.key for n in found)
 
     def _surroundings_told(self, key: str, happened: Message | None) -> None:
-        self.notices.tell(key, sentence(happened, self._window.plain_reader) if happened is not None else "")
+        if key == self.surroundings.DISK:
+            self._disk = happened
+            self._tell_disks()
+        else:
+            self.notices.tell(key, sentence(happened, self._window.plain_reader) if happened is not None else "")
+
+    def _tell_disks(self) -> None:
+        """One notice of all disks: of the store's own disk either watcher may tell, and one word is enough."""
+        told = [self._disk] if self._disk is not None else []
+        own = str(self._model.session.store_path.parent) if self._model is not None else ""
+        told += [m for m in self._disks if self._disk is None or m.values.get("path") != own]
+        text = " ".join(sentence(m, self._window.plain_reader) for m in told)
+        self.notices.tell(DISK, text, lasting=bool(self._disks))
 
     def _backups_stand(self, found: Rotated) -> None:
         self.notices.tell(BACKUP, "")
-        told = " ".join(sentence(m, self._window.reader) for m in found.notices)
-        self.notices.tell(DISK, told, lasting=True)
+        self._disks = found.notices
+        self._tell_disks()
 
     def _backup_failed(self, failure: Failure) -> None:
         """Silence would be taken for a backup."""
         told = self.tr("No backup was taken.") + " " + sentence(failure.message, self._window.reader)
-        self.notices.tell(BACKUP, told)
+        self.notices.tell(BACKUP, told, ways=ways_out_of(failure.message.key))
+
+    def _troubled(self, failure: Failure) -> None:
+        """Whoever met the damage may have said so in passing; it stands here for as long as the store is open."""
+        if failure.message.key in DAMAGE:
+            told = sentence(failure.message, self._window.reader)
+            self.notices.tell(DAMAGED, told, lasting=True, ways=ways_out_of(failure.message.key))
+
+    def _take_way(self, key: str) -> None:
+        if key == FORM_AGAIN:
+            self._window.doers.log.open_lost()
+            self.notices.tell(FORM, "")
+        else:
+            self._window.doers.store.take_step(key)
 
     def _recovered(self, label: str) -> None:
         told = self.tr(
             "A line for {label} was being typed when the program ended. It is back; nothing of it is recorded."
         )
         self.notices.tell(DRAFT, told.format(label=label))
+
+    def _form_found(self, lost: LostForm) -> None:
+        self._window.doers.log.lost = lost
+        told = self.tr("A form was being filled in when the program ended: {form}. Nothing of it is recorded.")
+        again = WayOn(FORM_AGAIN, self.tr("Open the form again"))
+        self.notices.tell(FORM, told.format(form=lost.title), ways=(again,))
 
     def _try_again(self) -> None:
         if self._model is not None:
@@ -257,3 +266,8 @@ class Keeping(QObject):
 
     def _not_tried(self, failure: Failure) -> None:
         """It is still so; the notice stands."""
+
+
+def ways_out_of(key: str) -> tuple[WayOn, ...]:
+    """The steps that lead out of a trouble with the store that is open, as buttons."""
+    return tuple(WayOn(step.value, word_of(step)) for step in steps_out_of(key) if step is not Step.AGAIN)

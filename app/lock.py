@@ -15,7 +15,7 @@ from PySide6.QtGui import QGuiApplication, QWindow
 from PySide6.QtWidgets import QApplication, QDialog, QToolTip, QWidget
 from shiboken6 import isValid
 
-from app.lock_page import LockPage, Way
+from app.lock_page import LockPage
 
 if TYPE_CHECKING:
     from app.window import MainWindow
@@ -90,9 +90,11 @@ class Lock(QObject):
         self._dialogs: list[tuple[QDialog, Qt.WindowModality]] = []
         self._focus: QWidget | None = None
         self.is_locked = False
+        self.over: QWidget | None = None
+        """A dialog that belongs to unlocking, and so may be seen."""
 
-    def lock(self, way: Way, person: str) -> None:
-        """Hide everything of this window and show how to get in again."""
+    def lock(self) -> None:
+        """Hide everything of this window; the page says how to get in again."""
         if self.is_locked:
             return
         self.is_locked = True
@@ -102,7 +104,6 @@ class Lock(QObject):
         QToolTip.hideText()
         self._window.menuBar().hide()
         self._window.cover.setCurrentWidget(self.page)
-        self.page.begin(way, person)
         app = QApplication.instance()
         if app is not None:
             app.installEventFilter(self)
@@ -127,19 +128,22 @@ class Lock(QObject):
         self._dialogs, self._focus = [], None
 
     def _put_away(self, widget: QWidget) -> None:
-        if widget is self._window or not widget.isVisible():
+        if widget in (self._window, self.over) or not widget.isVisible():
             return
         if isinstance(widget, QDialog):
             self._dialogs.append((widget, widget.windowModality()))
             widget.hide()
-        elif widget.windowType() is Qt.WindowType.Popup:
-            widget.close()
+        elif widget.windowType() in (Qt.WindowType.Popup, Qt.WindowType.ToolTip):
+            widget.hide()  # a tip's own end would leave it there for a while
 
     def eventFilter(self, watched: QObject, event: QEvent) -> bool:
         """A dialog that some late answer opens stays out of sight too."""
-        if event.type() == QEvent.Type.Show and isinstance(watched, QDialog) and self.is_locked:
+        if event.type() == QEvent.Type.Show and self.is_locked and self._comes_late(watched):
             QTimer.singleShot(0, self._hide_late)
         return False
+
+    def _comes_late(self, shown: QObject) -> bool:
+        return isinstance(shown, QWidget) and shown.isWindow() and shown not in (self._window, self.over)
 
     def _hide_late(self) -> None:
         if self.is_locked:

@@ -85,6 +85,7 @@ class Surroundings(QObject):
     """Looks every few seconds while a store is open. `told(key, message)`; message None takes the notice back."""
 
     told = Signal(str, object)
+    CLOCK, DISK = CLOCK, DISK
 
     def __init__(self, parent: QObject | None = None) -> None:
         super().__init__(parent)

@@ -139,6 +139,8 @@ class Runner(QObject):
     """`Progress` of the running submission."""
     failed = Signal(object)
     """A `Failure` that no view takes."""
+    troubled = Signal(object)
+    """Every `Failure`, taken by a view or not."""
     committed = Signal(int)
     """The ledger's head that the latest outcome reported."""
 
@@ -216,6 +218,7 @@ class Runner(QObject):
 
     def _answer(self, job: _Job) -> None:
         if job.failure is not None:
+            self.troubled.emit(job.failure)
             taker = job.failed() if job.failed else None
             if taker is not None and _lives(taker):
                 taker(job.failure)

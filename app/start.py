@@ -63,6 +63,11 @@ def _start_log() -> None:
     start_log(default_folder())
 
 
+def _clean_up(window: MainWindow) -> None:
+    """The first screen comes before what a killed program left behind."""
+    QTimer.singleShot(0, window.keeping.clean_up)
+
+
 def _close_on_signals(window: MainWindow) -> None:
     from app.end_signals import close_on_signals
 
@@ -75,6 +80,7 @@ def run_window(store: Path | None = None, passphrase: str | None = None, by: str
     _close_on_signals(window)
     window.show()
     QTimer.singleShot(0, _start_log)
+    _clean_up(window)
     if by:
         window.prefer(person=by)
     if store is not None and (store.exists() or passphrase is not None):
@@ -90,5 +96,6 @@ def run_demo() -> int:
     _close_on_signals(window)
     window.show()
     QTimer.singleShot(0, _start_log)
+    _clean_up(window)
     QTimer.singleShot(0, window.doers.file.do_sample_shift)
     return application().exec()

@@ -96,7 +96,8 @@ QLineEdit:disabled, QAbstractSpinBox:disabled, QComboBox:disabled {{
 QComboBox::drop-down {{ border: 0; width: {g6}px; }}
 QComboBox QAbstractItemView {{ background: {raised}; border: 1px solid {line}; outline: 0; }}
 
-QCheckBox, QRadioButton {{ spacing: {g2}px; min-height: {target}px; background: transparent; }}
+QCheckBox, QRadioButton {{ spacing: {g2}px; min-height: {target}px; background: transparent;
+    border: 2px solid transparent; }}
 QCheckBox::indicator, QListView::indicator, QTreeView::indicator {{
     width: {g4}px; height: {g4}px; background: {raised}; border: 1px solid {edge}; border-radius: {g1}px;
 }}

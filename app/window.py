@@ -32,11 +32,10 @@ from app.top_bar import TopBar
 from app.ward.moves import label_told_apart
 from app.ward_feed import WardFeed
 from app.ward_view import WardContent
-from app.words import Reader, sentence
+from app.words import Reader
 
 LEAST_SIZE = (1000, 640)
 USUAL_SIZE = (1280, 800)
-ASK_PASSPHRASE = ("store.needs_passphrase", "key.wrong_passphrase")
 
 
 class MainWindow(QMainWindow):
@@ -60,7 +59,7 @@ class MainWindow(QMainWindow):
         self.progress = ProgressLine(self)
         self.known = KnownStrip(self.theme)
         self._connect_known()
-        self.keeping = Keeping(self)
+        self.keeping, self.troubles = Keeping(self), Troubles(self)
         self._middle = QWidget()
         self._column = QVBoxLayout(self._middle)
         self._column.setContentsMargins(0, 0, 0, 0)
@@ -195,9 +194,11 @@ class MainWindow(QMainWindow):
     # what is shown
 
     def show_first_page(self) -> None:
+        page.step_wanted.connect(self.doers.store.take_step)
         """The page before any store is open."""
         self._clear_column()
         file_deeds = self.doers.file
+        self.setWindowTitle(self.keeping.title(None))
         page = FirstPage(self.theme, self.preferences.recent_stores, self.preferences.cautions_seen)
         page.sample_wanted.connect(file_deeds.do_sample_shift)
         page.new_wanted.connect(file_deeds.do_new_store)
@@ -395,18 +396,8 @@ class MainWindow(QMainWindow):
             o.pages.map.show_episode(on)
 
     def show_failure(self, failure: Failure) -> None:
-        """Say in the strip what did not succeed. A store that wants its passphrase asks for it; one that
-        cannot be opened leads back to the first page."""
-        text = sentence(failure.message, self.reader)
-        if failure.message.key in ASK_PASSPHRASE:
-            self.doers.file.ask_passphrase(text if failure.message.key == "key.wrong_passphrase" else "")
-        elif self.opened is not None and not self.opened.feed.is_ready and not failure.is_ours:
-            self.close_model()
-            self.show_first_page()
-            if self.first is not None:
-                self.first.say(text)
-        else:
-            self.say(text)
+        """Say what did not succeed, where it belongs."""
+        self.troubles.show(failure)
 
     def say(self, text: str) -> None:
         """Say something in the strip."""

@@ -7,8 +7,9 @@ import shutil
 from contextlib import closing
 from pathlib import Path
 
+from core.record.message import Message
 from storage import keys, opening
-from storage.engine import Database, driver_errors, raw_connection
+from storage.engine import PAGE_BYTES, Database, driver_errors, raw_connection
 from storage.errors import store_error, translated
 from storage.verify import findings
 
@@ -77,21 +78,22 @@ def _sync(path: Path) -> None:
         os.close(descriptor)
 
 
-def restore(source: Path, new: Path, passphrase: str | None = None) -> None:
+def restore(source: Path, new: Path, passphrase: str | None = None) -> Message | None:
     """Make a new store of a backup, with its envelope; whole or not at all, and nothing is overwritten.
 
-    A plain backup is verified before it is taken; an encrypted one when its passphrase is given, else its pages
-    are checked as it is opened.
+    A plain backup is verified before it is taken, an encrypted one when its passphrase is given. Without it only
+    what needs no key is looked at, and what was not is told: the answer is None where all was.
 
     Raises:
-        StoreError: `store.missing`, `store.exists`, `store.not_a_store`, `store.damaged`.
+        StoreError: `store.missing`, `store.exists`, `store.not_a_store`, `store.damaged`, `key.*`.
     """
     if not source.is_file():
         raise store_error("store.missing", path=source.name)
     _check_free(new)
     encrypted = opening.is_encrypted(source)
-    if encrypted and not keys.envelope_path(source).exists():
-        raise store_error("key.envelope_missing", path=keys.envelope_path(source).name)
+    if encrypted:
+        keys.check_envelope(keys.read_envelope(keys.envelope_path(source)))
+        _check_whole_pages(source)
     unfinished = new.with_name(new.name + ".unfinished")
     try:
         unfinished.touch(mode=0o600)
@@ -105,6 +107,7 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> None:
             keys.write_envelope(keys.envelope_path(new), keys.read_envelope(keys.envelope_path(source)))
         os.replace(unfinished, new)
         _sync(new.parent)
+        return Message("restore.not_checked", {"path": source.name}) if encrypted and passphrase is None else None
     except OSError as error:
         raise store_error("store.restore_failed", path=new.name, detail=error.strerror or "") from error
     finally:
@@ -122,6 +125,13 @@ _DAMAGE = (
     "verify.unreadable",
 )
 """Findings that make a backup unfit: what it says is not what was recorded."""
+
+
+def _check_whole_pages(path: Path) -> None:
+    """What a file without its key can still tell: a copy that was cut off is no whole number of pages."""
+    size = path.stat().st_size
+    if size < 2 * PAGE_BYTES or size % PAGE_BYTES:
+        raise store_error("store.damaged", path=path.name, detail=f"{size} bytes are no whole number of pages")
 
 
 def _check_sound(path: Path, key: bytes | None) -> None:

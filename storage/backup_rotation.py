@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from core.record.instant import DAY, HOUR, Instant, parse, to_datetime
+from core.record.message import RecordError
 from storage.keys import envelope_path
 
 if TYPE_CHECKING:
@@ -50,12 +51,26 @@ def backups_in(folder: Path, store: Path) -> dict[Instant, Path]:
     """The rotating backups of a store in a folder, by the moment in their names."""
     found: dict[Instant, Path] = {}
     for path in folder.glob("*.luff"):
-        stem, _, stamp = path.name.removesuffix(".luff").rpartition(".")
-        match = _STAMP.fullmatch(stamp)
-        if stem == store.stem and match:
-            y, mo, d, h, mi, s = match.groups()
-            found[parse(f"{y}-{mo}-{d}T{h}:{mi}:{s}Z")] = path
+        at = taken_at(path)
+        if at is not None and path.name.rpartition(".luff")[0].rpartition(".")[0] == store.stem:
+            found[at] = path
     return found
+
+
+def taken_at(path: Path) -> Instant | None:
+    """When a rotating backup was taken, by its name; None for any other file.
+
+    >>> taken_at(Path("ward.20260328T053000Z.luff")) == parse("2026-03-28T05:30:00Z")
+    True
+    """
+    match = _STAMP.fullmatch(path.name.removesuffix(".luff").rpartition(".")[2])
+    if match is None or path.suffix != ".luff":
+        return None
+    y, mo, d, h, mi, s = match.groups()
+    try:
+        return parse(f"{y}-{mo}-{d}T{h}:{mi}:{s}Z")
+    except RecordError:
+        return None  # digits that are no moment: somebody else's file
 
 
 def is_due(folder: Path, store: Path, now: Instant) -> bool:

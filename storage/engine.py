@@ -22,6 +22,8 @@ from storage.errors import DRIVER_ERRORS, StoreError, store_error, translated
 
 APPLICATION_ID = 0x4C556666
 BUSY_SECONDS = 10.0
+PAGE_BYTES = 4096
+"""A page of a store's file, plain or encrypted: the driver's own size, which no store changes."""
 _READERS = 3
 
 
@@ -62,6 +64,7 @@ class Database:
         self.path = path
         self.read_only = mode in ("ro", "immutable")
         self._key, self._busy = key, busy
+        self.is_keyed = key is not None
         self._write_lock = RLock()
         self._file = _identity(path)
         self.engine = sa.create_engine(
@@ -180,6 +183,13 @@ def integrity_findings(connection: sa.Connection, *, encrypted: bool) -> list[st
     for row in connection.exec_driver_sql("PRAGMA foreign_key_check"):
         found.append(f"row {row[1]} of {row[0]} points to a missing row of {row[2]}")
     return found
+
+
+def page_findings(connection: sa.Connection, *, encrypted: bool) -> list[str]:
+    """Pages that fail their proof or their form; empty when all is well."""
+    if encrypted:
+        return [str(row[0]) for row in connection.exec_driver_sql("PRAGMA cipher_integrity_check")]
+    return [str(r[0]) for r in connection.exec_driver_sql("PRAGMA quick_check(1)") if r[0] != "ok"]
 
 
 def fold_journal(database: Database) -> None:

@@ -27,6 +27,8 @@ KEY_BYTES = 32
 MIN_PASSPHRASE = 8
 _ALPHABET = "0123456789ABCDEFGHJKMNPQRSTVWXYZ"  # Crockford's base 32: no I, L, O, U
 _CODE_LENGTH = 32
+PASSPHRASE, RECOVERY = "passphrase", "recovery"
+"""Kinds of wraps."""
 _MAX_ENVELOPE = 100_000
 
 
@@ -72,8 +74,8 @@ def new_key(store_id: str, passphrase: str, cost: Cost = DEFAULT_COST) -> NewKey
     check_passphrase(passphrase)
     key, code = secrets.token_bytes(KEY_BYTES), new_recovery_code()
     wraps = [
-        _wrap(key, store_id, "passphrase", passphrase, cost),
-        _wrap(key, store_id, "recovery", code, cost),
+        _wrap(key, store_id, PASSPHRASE, passphrase, cost),
+        _wrap(key, store_id, RECOVERY, code, cost),
     ]
     return NewKey(key, _sealed(store_id, wraps, key), code)
 
@@ -99,13 +101,27 @@ def open_envelope(text: str, secret: str) -> bytes:
     Raises:
         StoreError: `key.wrong_passphrase` or `key.envelope_altered`.
     """
+    return _opened(text, secret)[0]
+
+
+def is_recovery_code(text: str, secret: str) -> bool:
+    """Whether a secret is the recovery code, and not the passphrase that a whole ward knows.
+
+    Raises:
+        StoreError: `key.wrong_passphrase` or `key.envelope_altered`.
+    """
+    return _opened(text, secret)[1] == RECOVERY
+
+
+def _opened(text: str, secret: str) -> tuple[bytes, str]:
+    """The data key, and the kind of wrap that the secret opened."""
     envelope = _read(text)
     for wrap in envelope["wraps"]:
         key = _unwrap(wrap, envelope["store_id"], secret)
         if key is not None:
             if not hmac.compare_digest(envelope["seal"], _seal(envelope, key)):
                 raise store_error("key.envelope_altered", detail="seal")
-            return key
+            return key, str(wrap["kind"])
     raise store_error("key.wrong_passphrase")
 
 
@@ -113,16 +129,16 @@ def change_passphrase(text: str, secret: str, new: str, cost: Cost = DEFAULT_COS
     """The envelope with a new passphrase; the recovery code stays. `secret` is the old passphrase or the code."""
     check_passphrase(new)
     key, envelope = open_envelope(text, secret), _read(text)
-    kept = [w for w in envelope["wraps"] if w["kind"] != "passphrase"]
-    return _sealed(envelope["store_id"], [_wrap(key, envelope["store_id"], "passphrase", new, cost), *kept], key)
+    kept = [w for w in envelope["wraps"] if w["kind"] != PASSPHRASE]
+    return _sealed(envelope["store_id"], [_wrap(key, envelope["store_id"], PASSPHRASE, new, cost), *kept], key)
 
 
 def change_recovery_code(text: str, secret: str, cost: Cost = DEFAULT_COST) -> tuple[str, str]:
     """The envelope with a new recovery code, and the code; the old one opens nothing any more."""
     key, envelope = open_envelope(text, secret), _read(text)
     code = new_recovery_code()
-    kept = [w for w in envelope["wraps"] if w["kind"] != "recovery"]
-    wraps = [*kept, _wrap(key, envelope["store_id"], "recovery", code, cost)]
+    kept = [w for w in envelope["wraps"] if w["kind"] != RECOVERY]
+    wraps = [*kept, _wrap(key, envelope["store_id"], RECOVERY, code, cost)]
     return _sealed(envelope["store_id"], wraps, key), code
 
 
@@ -167,7 +183,7 @@ def _code(secret: str) -> str:
 def _derived(secret: str, kind: str, salt: bytes, cost: Cost) -> bytes:
     from cryptography.hazmat.primitives.kdf.argon2 import Argon2id
 
-    material = _code(secret).encode() if kind == "recovery" else _normal(secret)
+    material = _code(secret).encode() if kind == RECOVERY else _normal(secret)
     kdf = Argon2id(salt=salt, length=KEY_BYTES, iterations=cost.passes, lanes=cost.lanes, memory_cost=cost.memory_kib)
     return kdf.derive(material)
 
@@ -193,7 +209,7 @@ def _unwrap(wrap: dict[str, Any], store_id: str, secret: str) -> bytes | None:
     from cryptography.exceptions import InvalidTag
     from cryptography.hazmat.primitives.ciphers.aead import ChaCha20Poly1305
 
-    if wrap["kind"] == "recovery" and len(_code(secret)) != _CODE_LENGTH:
+    if wrap["kind"] == RECOVERY and len(_code(secret)) != _CODE_LENGTH:
         return None
     cost = Cost(wrap["memory_kib"], wrap["passes"], wrap["lanes"])
     cipher = ChaCha20Poly1305(_derived(secret, wrap["kind"], bytes.fromhex(wrap["salt"]), cost))

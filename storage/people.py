@@ -28,6 +28,7 @@ STAFF, LEAD = "staff", "ward lead"
 ROLES = (STAFF, LEAD)
 ADDED, PIN_SET, ROLE_SET, RETIRED = "person added", "pin changed", "role changed", "person retired"
 SIGNED_IN, TURNED_AWAY = "signed in", "sign-in refused"
+CODE_USED = "recovery code used"
 PIN_COST = Cost(32_768, 2, 1)
 MOST_INITIALS, LEAST_PIN, MOST_PIN = 12, 4, 12
 FREE_TRIES, MOST_WAIT = 3, 300

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import tempfile
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -12,6 +11,7 @@ from PySide6.QtWidgets import QInputDialog
 
 from app.deeds.writing import WritingDeeds
 from app.failure import Failure
+from app.left_behind import HANDOVERS, OwnFolder
 from app.operations.outcome import Outcome
 from app.words import sentence
 
@@ -28,7 +28,7 @@ class ClosingDeeds(WritingDeeds):
     _names = ("", "", "A4")
     _printed = ""
     _copy_to: Path | None = None
-    _opened_folder: tempfile.TemporaryDirectory[str] | None = None
+    _opened_folder: OwnFolder | None = None
 
     def do_close_handover(self) -> None:
         """Ask who gives and who takes; keep the sheet as it is printed now."""
@@ -121,8 +121,8 @@ class ClosingDeeds(WritingDeeds):
     def open_closed(self, facts: DocumentFacts) -> None:
         """Open a closed handover in the computer's reader of PDFs, from a folder that goes with the window."""
         if self._opened_folder is None:
-            self._opened_folder = tempfile.TemporaryDirectory(prefix="luffmark-handover-")
-        self.fetch_closed(facts.id, Path(self._opened_folder.name) / f"handover-{facts.seq}.pdf")
+            self._opened_folder = OwnFolder(HANDOVERS)
+        self.fetch_closed(facts.id, self._opened_folder.path / f"handover-{facts.seq}.pdf")
 
     def copy_closed(self, facts: DocumentFacts) -> None:
         """Ask where, write a closed handover's bytes."""
@@ -142,14 +142,16 @@ class ClosingDeeds(WritingDeeds):
         if path is None:
             return
         self.write(path, outcome.value)
-        if self._opened_folder is not None and path.parent == Path(self._opened_folder.name):
+        if self._opened_folder is not None and path.parent == self._opened_folder.path:
             QDesktopServices.openUrl(QUrl.fromLocalFile(str(path)))
 
-    def forget_opened(self) -> None:
-        """Throw the opened copies away: they hold a ward's patients."""
+    def forget_opened(self) -> bool:
+        """Throw the opened copies away: they hold a ward's patients. Whether there were any."""
+        had = self._opened_folder is not None
         if self._opened_folder is not None:
-            self._opened_folder.cleanup()
+            self._opened_folder.forget()
             self._opened_folder = None
+        return had
 
     # paper and pattern
 

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import shutil
-import tempfile
 from dataclasses import dataclass, field
 from functools import partial
 from pathlib import Path
@@ -13,7 +11,8 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QDialog, QFileDialog
 
 from app.clock import REAL, running_from
-from app.deeds.doer import Doer
+from app.deeds.making import MakingDeeds, usual_folder
+from app.left_behind import SAMPLE, OwnFolder
 from app.local_zone import local_zone
 from app.operations.intake import ReadRequest
 from app.runner import Opener, Runner
@@ -21,7 +20,7 @@ from app.session import Session, SessionModel
 from storage.store import Store
 
 if TYPE_CHECKING:
-    from app.dialogs.passphrase import NewStoreDialog, OpenStoreDialog
+    from app.dialogs.passphrase import OpenStoreDialog
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,65 +30,21 @@ class _Opening:
     create: bool
 
 
-class FileDeeds(Doer):
+class FileDeeds(MakingDeeds):
     """Serves the menu File."""
 
-    _sample: Path | None = None
+    _sample: OwnFolder | None = None
     _last: _Opening | None = None
-    _then_take_in = False
-    _making: Path | None = None
-    _new_store: NewStoreDialog | None = None
     _asking: OpenStoreDialog | None = None
 
     # stores
-
-    def do_new_store(self) -> None:
-        """Ask where and with which passphrase, make an empty store, open it."""
-        chosen, _ = QFileDialog.getSaveFileName(
-            self.window,
-            self.tr("New store"),
-            str(_usual_folder() / "ward.luffmark"),
-            self.tr("Stores (*.luffmark)"),
-        )
-        if chosen:
-            self.make_store(Path(chosen))
-        else:
-            self._then_take_in = False
-
-    def make_store(self, path: Path) -> QDialog:
-        """Ask for the passphrase of a new store, or for the word that it goes without; make it and open it."""
-        from app.dialogs.passphrase import NewStoreDialog
-
-        dialog = NewStoreDialog(path.name, self.window.theme, self.window)
-        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        self._making = path
-        dialog.accepted.connect(self._make)
-        dialog.rejected.connect(self._not_made)
-        self._new_store = dialog
-        dialog.open()
-        return dialog
-
-    def _make(self) -> None:
-        if self._making is None or self._new_store is None:
-            return
-        path, passphrase = self._making, self._new_store.passphrase
-        self._making, self._new_store = None, None
-        self.open_path(path, passphrase=passphrase, create=True)
-        if passphrase is not None:
-            self.window.doers.store.show_code_once()
-        if self._then_take_in:
-            self._then_take_in = False
-            self.do_take_in()
-
-    def _not_made(self) -> None:
-        self._making, self._new_store, self._then_take_in = None, None, False
 
     def do_open_store(self) -> None:
         """Ask which, open it."""
         chosen, _ = QFileDialog.getOpenFileName(
             self.window,
             self.tr("Open store"),
-            str(_usual_folder()),
+            str(usual_folder()),
             self.tr("Stores (*.luffmark);;All files (*)"),
         )
         if chosen:
@@ -104,6 +59,11 @@ class FileDeeds(Doer):
         """Open a store of the list of recent ones."""
         self.open_path(Path(path))
 
+    def open_again(self) -> None:
+        """Try the store that was tried last once more."""
+        if self._last is not None:
+            self.open_path(self._last.path, passphrase=self._last.passphrase)
+
     def open_path(self, path: Path, *, passphrase: str | None = None, create: bool = False) -> None:
         """Open a store, or make it first."""
         self._last = _Opening(path, passphrase, create)
@@ -117,20 +77,20 @@ class FileDeeds(Doer):
         from app import demo
 
         self.forget_sample()
-        self._sample = Path(tempfile.mkdtemp(prefix="luffmark-sample-"))
+        self._sample = OwnFolder(SAMPLE)
         session = Session(
-            self._sample / demo.STORE_NAME,
+            self._sample.path / demo.STORE_NAME,
             zone=demo.ZONE,
             clock=running_from(demo.demo_now()),
             person=demo.BY,
             is_demo=True,
         )
-        self.show(session, partial(_make_sample, self._sample))
+        self.show(session, partial(_make_sample, self._sample.path))
 
     def forget_sample(self) -> None:
         """Throw the sample's store away; its session must be closed."""
         if self._sample is not None:
-            shutil.rmtree(self._sample, ignore_errors=True)
+            self._sample.forget()
             self._sample = None
 
     def show(self, session: Session, opener: Opener) -> None:
@@ -260,11 +220,3 @@ def _make_sample(folder: Path) -> Store:
     from app import demo
 
     return Store.open(demo.make_demo_store(folder))
-
-
-def _usual_folder() -> Path:
-    from platformdirs import user_data_path
-
-    folder = user_data_path("luffmark", appauthor=False)
-    folder.mkdir(parents=True, exist_ok=True)
-    return folder

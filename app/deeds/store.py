@@ -8,17 +8,24 @@ from typing import TYPE_CHECKING, TypeVar
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QInputDialog
 
+from app.backups import folder_for
 from app.clock import REAL, Clock
 from app.deeds.doer import Doer
 from app.failure import Failure
+from app.lock_page import Way
 from app.operations.outcome import Outcome
 from app.preferences import MOST_LOCK_MINUTES
+from app.steps import Step
 from app.words import sentence
 from core.record.message import Message
+from storage.backup_rotation import backups_in
 
 if TYPE_CHECKING:
+    from app.dialogs.file_work import FileWork
+    from app.dialogs.key_file import KeyFileDialog
     from app.dialogs.passphrase import ChangePassphraseDialog, RecoveryCodeDialog
-    from app.dialogs.store_care import FileWork, RestoreDialog, SalvageDialog
+    from app.dialogs.restore import RestoreDialog
+    from app.dialogs.salvage import SalvageDialog
 
 T = TypeVar("T", bound="FileWork")
 
@@ -36,11 +43,14 @@ class StoreDeeds(Doer):
         self.window.keeping.lock_now(self.model.session.person)
 
     def do_lock_after(self) -> None:
-        """Ask after how many minutes."""
+        """Ask after how many minutes; say where nothing would lock."""
+        told = self.tr("Minutes without key or mouse")
+        if self.window.model is not None and self.window.keeping.way is Way.NOTHING:
+            told = self.tr("This store has neither people nor a passphrase: it does not lock by itself.\nFor stores "
+                           "that have: minutes without key or mouse")  # fmt: skip
         minutes, given = QInputDialog.getInt(
-            self.window, self.tr("Lock after"), self.tr("Minutes without key or mouse"),
-            self.window.preferences.lock_minutes, 1, MOST_LOCK_MINUTES,
-        )  # fmt: skip
+            self.window, self.tr("Lock after"), told, self.window.preferences.lock_minutes, 1, MOST_LOCK_MINUTES
+        )
         if given:
             self.lock_after(minutes)
 
@@ -53,7 +63,7 @@ class StoreDeeds(Doer):
 
     def do_backups(self) -> None:
         """List the backups; take one, restore one, choose the folder."""
-        from app.dialogs.store_care import BackupsDialog
+        from app.dialogs.backups import BackupsDialog
 
         keeper = self.window.keeping.backups
         if keeper is None:
@@ -69,7 +79,7 @@ class StoreDeeds(Doer):
         """Keep backups there from now on."""
         self.window.prefer(backup_folder=str(folder))
         if self.window.keeping.backups is not None:
-            self.window.keeping.backups.folder = folder
+            self.window.keeping.backups.folder = folder_for(str(folder), self.model.session.store_path)
 
     def set_witness(self, path: Path) -> None:
         """Add the printed head to this file after each backup."""
@@ -82,11 +92,13 @@ class StoreDeeds(Doer):
         self.restore(None)
 
     def restore(self, backup: Path | None) -> RestoreDialog:
-        """Restore a backup into a new store."""
-        from app.dialogs.store_care import RestoreDialog
+        """Restore a backup into a new store; the newest one is proposed."""
+        from app.dialogs.restore import RestoreDialog
 
-        dialog = RestoreDialog(backup, self._store_path(), self._who(), self._clock(), self.window.reader,
-                               self.window.theme, self.window)  # fmt: skip
+        path = self._store_path()
+        dialog = RestoreDialog(backup or self._newest_backup(path), path, self._who(), self._clock(),
+                               self.window.reader, self.window.theme, self.window,
+                               folder=None if path is None else self._backup_folder(path))  # fmt: skip
         return self._work_on_files(dialog)
 
     def do_salvage(self) -> None:
@@ -95,10 +107,31 @@ class StoreDeeds(Doer):
 
     def salvage(self, old: Path | None) -> SalvageDialog:
         """Save what can be read of a damaged store."""
-        from app.dialogs.store_care import SalvageDialog
+        from app.dialogs.salvage import SalvageDialog
 
         dialog = SalvageDialog(old, self._who(), self._clock(), self.window.reader, self.window.theme, self.window)
         return self._work_on_files(dialog)
+
+    def do_key_file(self) -> None:
+        """Put back the key file of a store."""
+        self.put_key_file_back()
+
+    def put_key_file_back(self) -> KeyFileDialog:
+        """Put back a key file from the newest backup, or another."""
+        from app.dialogs.key_file import KeyFileDialog
+
+        path = self._store_path()
+        dialog = KeyFileDialog(path, self._newest_backup(path), self._who(), self._clock(), self.window.reader,
+                               self.window.theme, self.window)  # fmt: skip
+        return self._work_on_files(dialog)
+
+    def take_step(self, step: str) -> None:
+        """A way out of some trouble was chosen."""
+        file = self.window.doers.file
+        {
+            Step.RESTORE: self.do_restore, Step.SALVAGE: self.do_salvage, Step.KEY_FILE: self.do_key_file,
+            Step.AGAIN: file.open_again, Step.OPEN: file.do_open_store, Step.NEW: file.do_new_store,
+        }[Step(step)]()  # fmt: skip
 
     def _work_on_files(self, dialog: T) -> T:
         dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
@@ -106,8 +139,19 @@ class StoreDeeds(Doer):
         dialog.open()
         return dialog
 
-    def _open_made(self, path: Path) -> None:
-        self.window.doers.file.open_path(path)
+    def _open_made(self, path: Path, passphrase: str | None) -> None:
+        """What the person has just typed is not asked for again."""
+        self.window.doers.file.open_path(path, passphrase=passphrase)
+
+    def _backup_folder(self, store: Path) -> Path:
+        return folder_for(self.window.preferences.backup_folder, store)
+
+    def _newest_backup(self, store: Path | None) -> Path | None:
+        if store is None:
+            return None
+        folder = self._backup_folder(store)
+        found = backups_in(folder, store) if folder.is_dir() else {}
+        return found[max(found)] if found else None
 
     def _store_path(self) -> Path | None:
         """The store that is open, else the one that was tried last."""
@@ -157,24 +201,16 @@ class StoreDeeds(Doer):
 
     # passphrase
 
-    def show_code_once(self) -> None:
-        """The store was made just now: show its recovery code, this once."""
-        from app.operations import passphrase
-
-        self.model.ask(passphrase.code_once, None, done=self._code_told)
-
-    def _code_told(self, outcome: Outcome[str]) -> None:
-        if outcome.value:
-            self._show_code(outcome.value)
-
-    def _show_code(self, code: str) -> None:
+    def show_code(self, code: str) -> RecoveryCodeDialog:
+        """Show a recovery code, this once."""
         from app.dialogs.passphrase import RecoveryCodeDialog
 
         name = self.model.session.store_path.name
-        self.code_dialog = RecoveryCodeDialog(name, code, self.window.theme, self.window)
-        self.code_dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        self.code_dialog.finished.connect(self._code_kept)
-        self.code_dialog.open()
+        dialog = self.code_dialog = RecoveryCodeDialog(name, code, self.window.theme, self.window)
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        dialog.finished.connect(self._code_kept)
+        dialog.open()
+        return dialog
 
     def _code_kept(self, _result: int) -> None:
         self.code_dialog = None
@@ -203,7 +239,7 @@ class StoreDeeds(Doer):
             self._changing = None
         self.window.say(self.tr("The passphrase was changed. Backups made before keep the old one."))
         if outcome.value:
-            self._show_code(outcome.value)
+            self.show_code(outcome.value)
 
     def _not_changed(self, failure: Failure) -> None:
         if self._changing is not None:

@@ -26,7 +26,7 @@ class AskingDialog(QDialog):
         self.form = QFormLayout()
         self.form.setSpacing(theme.px(8))
         self.form.setFieldGrowthPolicy(QFormLayout.FieldGrowthPolicy.ExpandingFieldsGrow)
-        self.form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.wrong = QLabel()
         self.wrong.setWordWrap(True)
         self.wrong.setTextFormat(Qt.TextFormat.PlainText)
@@ -34,7 +34,7 @@ class AskingDialog(QDialog):
         self.buttons = QDialogButtonBox()
         self.go = self.buttons.addButton(accept_word, QDialogButtonBox.ButtonRole.AcceptRole)
         self.go.setProperty("role", "primary")
-        self.buttons.addButton(self.tr("Leave"), QDialogButtonBox.ButtonRole.RejectRole)
+        self.leave = self.buttons.addButton(self.tr("Leave"), QDialogButtonBox.ButtonRole.RejectRole)
         self.buttons.accepted.connect(self.submit)
         self.buttons.rejected.connect(self.reject)
         column = QVBoxLayout(self)
@@ -62,9 +62,10 @@ class AskingDialog(QDialog):
     def showEvent(self, event: QShowEvent) -> None:
         """Tall enough for every wrapped line: a form that cuts its words says something else."""
         super().showEvent(event)
-        self._grow()
+        self.grow()
 
-    def _grow(self) -> None:
+    def grow(self) -> None:
+        """Become tall enough for what stands there now."""
         needed = self._column.totalHeightForWidth(self.width())
         if needed > self.height():
             self.resize(self.width(), needed)
@@ -76,5 +77,5 @@ class AskingDialog(QDialog):
     def refuse(self, text: str) -> None:
         """Say what is wrong."""
         self.wrong.setText(text)
-        self._grow()
+        self.grow()
         self.go.setEnabled(True)

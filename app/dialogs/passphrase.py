@@ -197,7 +197,7 @@ class RecoveryCodeDialog(AskingDialog):
         self.body.addLayout(row)
         self.kept = QCheckBox(self.tr("It is written down or printed, and I know where it will lie"))
         self.body.addWidget(self.kept)
-        self.buttons.removeButton(self.buttons.buttons()[-1])
+        self.buttons.removeButton(self.leave)
         self.go.setEnabled(False)
         self.kept.toggled.connect(self.go.setEnabled)
         self.copy.clicked.connect(self._copy)

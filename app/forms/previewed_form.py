@@ -7,6 +7,7 @@ all untouched.
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from html import escape
 from typing import Any
 
@@ -26,6 +27,7 @@ from PySide6.QtWidgets import (
 
 from app.failure import Failure
 from app.forms.cells import Card
+from app.forms.typed import fields_of, put, read
 from app.operations.outcome import Outcome
 from app.readers import reader_at
 from app.session import SessionModel
@@ -38,6 +40,8 @@ class PreviewedForm(QDialog):
     """Build fields in `build`; say what they want in `request`. `recorded` after it was done."""
 
     recorded = Signal(object)
+    changed = Signal()
+    """A field was edited."""
     timed = True
     """Whether the form has a moment of its own, at its head."""
 
@@ -71,6 +75,21 @@ class PreviewedForm(QDialog):
         self.go.clicked.connect(self.submit)
         self.leave.clicked.connect(self.reject)
         self.time.textEdited.connect(self.edited)
+        self.edited()
+        self._opened_as = {name: read(field) for name, field in fields_of(self).items()}
+
+    # what is typed
+
+    def typed(self) -> dict[str, str]:
+        """What a person has changed since the form opened, by field, to be kept as a draft."""
+        there = {name: read(field) for name, field in fields_of(self).items()}
+        return {name: text for name, text in there.items() if text != self._opened_as.get(name, "")}
+
+    def put(self, typed: Mapping[str, str]) -> None:
+        """Put a draft back into the fields; nothing of it is recorded."""
+        moment = {name: text for name, text in typed.items() if name == "time"}
+        put(fields_of(self), moment)  # what is in force then comes first, and what was typed over it after
+        put(fields_of(self), {name: text for name, text in typed.items() if name not in moment})
         self.edited()
 
     # for each form
@@ -210,6 +229,7 @@ class PreviewedForm(QDialog):
         else:
             self.say(escape(lacks or self.tr("Nothing to record yet. Esc leaves all as it is.")))
         self.show_extra()
+        self.changed.emit()
 
     def previewed(self, outcome: Outcome[Any]) -> None:
         """The preview has come."""

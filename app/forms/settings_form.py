@@ -139,6 +139,11 @@ class SettingsForm(EntryForm):
             if self._takes(key) and f.text and f.text != self._shown[key]
         }  # fmt: skip
 
+    def typed(self) -> dict[str, str]:
+        """Only what differs from what is in force: the rest is not typed, and may change before it is put back."""
+        own = {"time", *(f"fields.{key}" for key in self._changes()), *(n for n in self._boxes() if self._differs(n))}
+        return {name: text for name, text in super().typed().items() if name in own}
+
     def items(self) -> str:
         parts = {name: str(box.currentData()) for name, box in self._boxes().items() if self._differs(name)}
         return worded(parts | self._changes())

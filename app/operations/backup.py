@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import shutil
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -34,11 +35,12 @@ class BackupFacts:
 @dataclass(frozen=True, slots=True)
 class Rotation:
     """Where rotating backups lie. `now`: take one whether or not the last is an hour old. `witness`: a file that the
-    printed head is added to after each, "" for none."""
+    printed head is added to after each, "" for none. `pages`: where none is due, read every page all the same."""
 
     folder: Path
     now: bool = False
     witness: str = ""
+    pages: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,7 +67,8 @@ class RestoreRequest:
 class Restored:
     """A store made of a backup. `newer`: what the old store holds beyond it; None where there was none to compare.
 
-    `same`: whether the old store still holds the backup's head, so that the one continues the other.
+    `same`: whether the old store still holds the backup's head, so that the one continues the other. `unchecked`:
+    what could not be checked for want of the passphrase. `labels`: what episodes are called, by key.
     """
 
     new: Path
@@ -73,6 +76,8 @@ class Restored:
     newer: Newer | None = None
     same: bool = True
     not_compared: Message | None = None
+    unchecked: Message | None = None
+    labels: Mapping[str, str] = field(default_factory=dict)
 
 
 def write(store: Store, who: str, now: Instant, request: Path) -> Outcome[BackupFacts]:
@@ -100,6 +105,8 @@ def rotate(store: Store, who: str, now: Instant, request: Rotation) -> Outcome[R
         backup_rotation.rotate(store, request.folder, now)
         if request.witness:
             witness.add(Path(request.witness), store, now)
+    elif request.pages:
+        store.check_pages()
     found = backup_rotation.backups_in(request.folder, store.path)
     newest = max(found, default=None)
     notices = low_disk(store.path, request.folder)
@@ -129,19 +136,18 @@ def restore(store: object, who: str, now: Instant, request: RestoreRequest) -> O
         StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`, `key.*`.
         RecordError: `people.lead_needed`.
     """
-    from storage.opening import is_encrypted
     from storage.store import Store
 
     if not is_encrypted_and_closed(request.backup, request.passphrase):
         with Store.open(request.backup, passphrase=request.passphrase, read_only=True) as source:
             require_lead(source, who)
-    Store.restore(request.backup, request.new, passphrase=request.passphrase)
-    if is_encrypted(request.new) and request.passphrase is None:
-        return Outcome(Restored(request.new, ""), 0)
+    unchecked = Store.restore(request.backup, request.new, passphrase=request.passphrase)
+    if unchecked is not None:
+        return Outcome(Restored(request.new, "", unchecked=unchecked), 0)
     with Store.open(request.new, passphrase=request.passphrase) as made:
-        head, printed = made.head(), made.printed_head()
-        found = _compared(request, head, printed)
-        receipt = made.record_event(RESTORED, person=who, now=now, detail=f"{request.backup.name}, head {printed}")
+        found = _compared(made, request)
+        detail = f"{request.backup.name}, head {found.printed_head}"
+        receipt = made.record_event(RESTORED, person=who, now=now, detail=detail)
     return Outcome(found, receipt.last_seq)
 
 
@@ -152,13 +158,14 @@ def is_encrypted_and_closed(path: Path, passphrase: str | None) -> bool:
     return not path.is_file() or (is_encrypted(path) and passphrase is None)
 
 
-def _compared(request: RestoreRequest, head: int, printed: str) -> Restored:
-    from storage.store import Store
-
-    if request.against is None:
-        return Restored(request.new, printed)
+def _compared(made: Store, request: RestoreRequest) -> Restored:
+    """The old store may have another passphrase by now, or no key file: its data key is still the backup's."""
+    printed, labels = made.printed_head(), dict(made.texts_of("label"))
+    if request.against is None or not request.against.is_file():
+        return Restored(request.new, printed, labels=labels)
     try:
-        with Store.open(request.against, passphrase=request.passphrase, read_only=True) as old:
-            return Restored(request.new, printed, old.newer_than(head), head == 0 or old.proves(printed))
+        found = made.compare_with(request.against)
     except StoreError as error:
-        return Restored(request.new, printed, not_compared=error.message)
+        return Restored(request.new, printed, not_compared=error.message, labels=labels)
+    later = {e.episode: t.raw for e in found.newer.episodes for t in e.told if t.channel == "label"}
+    return Restored(request.new, printed, found.newer, found.same, labels=labels | later)

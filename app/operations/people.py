@@ -103,5 +103,25 @@ def require_lead(store: Store, who: str) -> None:
         raise refuse("people.lead_needed", person=who, accepted=leads)
 
 
+def pin_by_code(store: Store, who: str, now: Instant, request: NewPin) -> Outcome[str]:
+    """Give somebody a PIN by the recovery code, a new one or, as staff, the first one, and sign them in; their initials.
+    That the code was used is an event of its own.
+
+    Raises:
+        RecordError: `people.wrong_code`, `people.bad_initials`, `people.bad_pin`, `people.weak_pin`.
+    """
+    if not _holds_code(store, request.recovery_code):
+        raise refuse("people.wrong_code", accepted="the recovery code of this store")
+    initials = people.check_initials(request.initials)
+    known = people.of_store(store).get(initials)
+    if known is None or known.retired:
+        people.add(store, initials, request.pin, people.STAFF, by=initials, now=now)
+    else:
+        people.set_pin(store, initials, request.pin, by=initials, now=now)
+    store.record_event(people.CODE_USED, person=initials, now=now)
+    return Outcome(initials, store.record_event(people.SIGNED_IN, person=initials, now=now).last_seq)
+
+
 def _holds_code(store: Store, code: str) -> bool:
-    return bool(code) and store.is_encrypted and store.opens_with(code)
+    """The code alone: the passphrase is known to everybody who opens the store, and gives nobody a right."""
+    return bool(code) and store.is_encrypted and store.is_recovery_code(code)

@@ -16,6 +16,8 @@ TEMPLATES: Final[dict[str, str]] = {
         "(--pin-fd N).",
     "people.unknown": "'{value}' is not one of the people of this store. Accepted: {accepted}.",
     "people.wait": "Too many wrong PINs for {person}. Wait {seconds:0} s and try again.",
+    "people.wait_counted": "Too many wrong PINs for {person}. Wait {seconds} s and try again.",
     "people.weak_pin": "That PIN is guessed first. Accepted: {accepted}.",
+    "people.wrong_code": "That is not the recovery code. Accepted: {accepted}.",
     "people.wrong_pin": "The PIN of {person} is wrong.",
 }  # fmt: skip

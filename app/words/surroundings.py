@@ -41,13 +41,15 @@ TEMPLATES: Final[dict[str, str]] = {
     "intake.refused": "{path} was not taken: {rows} row(s) refused. Accepted: {accepted}.",
     "intake.unknown_source": "Nothing was taken in as '{value}'. Accepted: {accepted}.",
     "intake.withdrawn_already": "{path} was withdrawn already. Accepted: {accepted}.",
-    "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}). "
-        "Put the key file of a backup in its place.",
+    "key.envelope_altered": "The key file beside the store was altered or is damaged ({detail}); the passphrase is "
+        "not to blame, and the store itself may be whole. Put the key file of a backup in its place.",
     "key.envelope_missing": "This file is no store, or an encrypted one whose key file {path} is not beside it. "
         "Put it back, or that of a backup.",
     "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
         "Update the program.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
+    "key.of_another_store": "That key file opens, but not {path}: it belongs to another store, or the store's first "
+        "page is damaged. Nothing was changed. Try the key file of another backup.",
     "replay.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
         "Replay fewer episodes, or a shorter span.",
@@ -69,7 +71,12 @@ TEMPLATES: Final[dict[str, str]] = {
         "that ends.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",
     "store.damaged":
-        "[[{path}]][[!path|The store]] is damaged: {detail}. Restore the newest backup into a new store.",
+        "[[{path}]][[!path|The store]] is damaged: part of the file is not what was written ({detail}). Restore the "
+        "newest backup into a new store, or save what can be read.[[ {first:pick page=It is the first page that "
+        "fails: if the rest is whole, the key file beside it may be that of another store.}]]",
+    "restore.not_checked": "{path} is encrypted and no passphrase was given: its key file is whole and its length is "
+        "right; its pages, its chain and its rules were not checked, and nothing was compared with the old store. "
+        "Check it once it is open (Store, Check this store).",
     "store.damaged_chunk": "A block of device samples is damaged. Run verify, and restore a backup.",
     "store.disk_error": "The disk failed while {path} was used: {detail}.",
     "store.disk_full": "The disk is full: nothing was recorded in {path}. Make room and try again.",

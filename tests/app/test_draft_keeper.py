@@ -42,7 +42,7 @@ def typed():
     if not window.strip.line.text():
         window.select("bed-3")
         window.strip.set_text("22/6 3")
-    elif window.keeping._drafts._kept and not window.model.runner.is_busy:
+    elif window.keeping.drafts._kept and not window.model.runner.is_busy:
         os._exit(9)  # as a crash ends it: nothing is closed
 timer = QTimer()
 timer.timeout.connect(typed)
@@ -83,7 +83,7 @@ def test_what_another_window_types_stays_its_own(qtbot, tmp_path):
     path = make_store(tmp_path / "ward.luffmark")
     with open_window(qtbot, path) as first:
         first.strip.set_text("22/6 3")
-        first.keeping._drafts.keep()
+        first.keeping.drafts.keep()
         settled(qtbot, first)
         second = MainWindow(Preferences(cautions_seen=True))
         qtbot.addWidget(second)
@@ -101,7 +101,7 @@ def test_a_recorded_line_leaves_no_draft_and_a_closed_window_keeps_its_line(qtbo
     path = make_store(tmp_path / "ward.luffmark")
     with open_window(qtbot, path) as window:
         window.strip.set_text("rr 24")
-        window.keeping._drafts.keep()
+        window.keeping.drafts.keep()
         settled(qtbot, window)
         assert len(drafts(path)) == 1
         window.strip.line.returnPressed.emit()

@@ -142,7 +142,7 @@ def test_an_encrypted_store_without_people_opens_by_passphrase_or_code(qtbot, tm
     window.show_model(SessionModel(session, Runner(partial(Store.open, path, passphrase=SECRET)), window))
     until(qtbot, lambda: window.feed.is_ready and not window.model.runner.is_busy)
     for secret in (SECRET, code):
-        window.keeping._idle()
+        window.keeping.locking.idle()
         page = window.keeping.lock.page
         assert page.way is Way.PASSPHRASE
         assert page.initials.isHidden()
@@ -158,7 +158,7 @@ def test_an_encrypted_store_without_people_opens_by_passphrase_or_code(qtbot, tm
 
 def test_a_plain_store_without_people_is_hidden_at_will_and_never_by_itself(qtbot, tmp_path):
     with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as window:
-        window.keeping._idle()
+        window.keeping.locking.idle()
         assert not window.keeping.lock.is_locked
         assert not window.keeping.watch._look.isActive()
         window.actions_by_key["lock"].trigger()

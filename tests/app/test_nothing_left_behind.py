@@ -70,7 +70,7 @@ def test_nothing_of_a_patient_is_left_behind(qtbot, folders, caplog, capsys):
         window.show_page(page)
         settled(qtbot, window)
     window.strip.set_text(f"note {MARK} half typed")
-    window.keeping._drafts.keep()
+    window.keeping.drafts.keep()
     failures = []
     window.model.failed.connect(failures.append)
     window.model.ask(fails, f"note {MARK}")

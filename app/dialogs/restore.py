@@ -1,0 +1,129 @@
+"""Restoring a backup: a new store of it, with what the old store holds beyond it, to be entered again."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from PySide6.QtCore import QCoreApplication
+from PySide6.QtWidgets import QCheckBox, QLineEdit, QWidget
+
+from app.clock import Clock
+from app.dialogs.file_work import FileWork, free_name
+from app.formats import wall, with_unit
+from app.operations import backup as backups
+from app.operations.outcome import Outcome
+from app.phrases import channel_name
+from app.theme import Theme
+from app.words import Reader, sentence
+from storage.backup_rotation import taken_at
+from storage.restore_report import MOST_TOLD, NewerEntry
+
+
+class RestoreDialog(FileWork):
+    """A new store of a backup. An encrypted one asks for its passphrase; without it, that is a choice of its own."""
+
+    def __init__(
+        self, backup: Path | None, against: Path | None, who: str, clock: Clock, reader: Reader, theme: Theme,
+        parent: QWidget | None = None, *, folder: Path | None = None,
+    ) -> None:  # fmt: skip
+        super().__init__("", "", who, clock, reader, theme, parent)
+        self.setWindowTitle(self.tr("Restore a backup"))
+        self.go.setText(self.tr("Restore"))
+        self._against, self._folder = against, folder
+        self.unchecked = QCheckBox(self.tr("Nobody here knows it: restore the copy unchecked"))
+        if backup is not None:
+            self.source.setText(str(backup))
+        if against is not None:
+            self.new.setText(str(free_name(against.with_name(f"{against.stem}-restored{against.suffix}"))))
+        told = self.tr(
+            "A backup is checked and made a new store beside the old one; nothing is overwritten. What the old store "
+            "holds beyond it is listed, to be entered again."
+        )
+        self.lay_out(told, self.tr("Backup"), self.tr("New store"))
+
+    def lay_out(self, told: str, source: str, new: str) -> None:
+        super().lay_out(told, source, new)
+        self.form.addRow("", self.unchecked)
+        self.look_at_source()
+
+    def look_at_source(self) -> None:
+        super().look_at_source()
+        needs = self.needs_passphrase(Path(self.source.text().strip()))
+        if self.form.indexOf(self.unchecked) >= 0:
+            self.form.setRowVisible(self.unchecked, needs)
+
+    def note_of(self, path: Path) -> str:
+        at = taken_at(path)
+        if at is None:
+            return ""
+        told = self.tr("Taken {time}.").format(time=wall(at, self._reader.zone))
+        kept = self.tr("It opens with the passphrase that the store had then.")
+        return f"{told} {kept}" if self.needs_passphrase(path) else told
+
+    def start_of(self, line: QLineEdit) -> str:
+        if line is self.source and not line.text() and self._folder is not None:
+            return str(self._folder)
+        return super().start_of(line)
+
+    def submit(self) -> None:
+        if (found := self.paths()) is None:
+            return
+        if not self.unchecked.isChecked() and self.lacks_passphrase():
+            return
+        passphrase = None if self.unchecked.isChecked() else self.passphrase
+        self.work(backups.restore, backups.RestoreRequest(*found, passphrase, self._against), self._restored)
+
+    def _restored(self, outcome: Outcome[backups.Restored]) -> None:
+        self.show_told(restored_words(outcome.value, self._reader))
+
+
+def restored_words(made: backups.Restored, reader: Reader) -> list[str]:
+    """What came of a restore, line by line."""
+    if made.unchecked is not None:
+        first = _tr("{store} was made. It was NOT checked.").format(store=made.new.name)
+        return [first, sentence(made.unchecked, reader)]
+    lines = [_tr("{store} was made and checked: pages, chain and rules.").format(store=made.new.name)]
+    if made.not_compared is not None:
+        lines.append(_tr("The old store could not be compared: what it holds beyond this backup is not known."))
+        return [*lines, sentence(made.not_compared, reader)]
+    if made.newer is None:
+        return lines
+    if not made.same:
+        lines.append(_tr("The old store does not continue this backup: their chains differ."))
+    if made.newer.damaged:
+        lines.append(_tr("The old store is damaged and was read as far as it can be: there may be more."))
+    if not made.newer.batches and not made.newer.episodes:
+        return [*lines, _tr("The old store holds nothing beyond this backup.")]
+    return [*lines, *_newer_words(made, reader)]
+
+
+def _newer_words(made: backups.Restored, reader: Reader) -> list[str]:
+    assert made.newer is not None
+    lines = ["", _tr("The old store holds more, which is to be entered again:")]
+    told = 0
+    for e in made.newer.episodes:
+        head = _tr("{label}: {entries} logged, {samples} device samples")
+        line = head.format(label=made.labels.get(e.episode, e.episode), entries=e.entries, samples=e.samples)
+        if e.last_recorded:
+            line += _tr(", last recorded {time}").format(time=wall(e.last_recorded, reader.zone))
+        lines += [line, *(f"    {_entry_words(t, reader)}" for t in e.told)]
+        told += len(e.told)
+    if told >= MOST_TOLD:
+        lines.append(_tr("Only the newest {count} entries are listed one by one.").format(count=MOST_TOLD))
+    if made.newer.others:
+        lines.append(_tr("and {count} documents, policies or sign-ins").format(count=made.newer.others))
+    lines += ["", _tr("The old file is left as it is. 'Save from a damaged store' keeps these entries too.")]
+    return lines
+
+
+def _entry_words(entry: NewerEntry, reader: Reader) -> str:
+    value = " ".join(part for part in (with_unit(entry.raw, entry.raw_unit), entry.note) if part)
+    kinds = {"correct": _tr("corrected"), "withdraw": _tr("withdrawn"), "move": _tr("moved here")}
+    what = " ".join(part for part in (channel_name(entry.channel), value) if part)
+    if entry.action in kinds:
+        what += f" ({kinds[entry.action]})"
+    return f"{wall(entry.at, reader.zone)}  {what}, {entry.by}"
+
+
+def _tr(text: str) -> str:
+    return QCoreApplication.translate("restore", text)
