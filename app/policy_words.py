@@ -39,12 +39,25 @@ LIMITS: Mapping[str, tuple[str, str]] = {
     "ph_low": ("pH from", "pH"),
     "points": ("points", ""), "pressure_support": ("pressure support by", "cmH2O"),
     "rate_tolerance": ("rate within", "/min"), "rise": ("rise", ""), "rr": ("respiratory rate", "/min"),
-    "rr_least": ("respiratory rate at least", "/min"), "sbp": ("systolic pressure", "mmHg"),
-    "sbp_fall": ("systolic pressure down by", "mmHg"), "sf": ("S/F", ""),
+    "rr_least": ("respiratory rate at least", "/min"), "sbp": ("systolic blood pressure", "mmHg"),
+    "sbp_fall": ("systolic blood pressure down by", "mmHg"), "sf": ("S/F", ""),
     "support_h": ("on support for at most", "h"),
     "to_min": ("to", "min"), "triggered_percent": ("own breaths below", "%"), "within_h": ("within", "h"),
     "within_min": ("within", "min"),
 }  # fmt: skip
+_RELATIONS: Mapping[tuple[str, str], str] = {
+    ("", "ph"): "below", ("", "gcs"): "below", ("", "pao2"): "below", ("", "paco2"): "above", ("", "sf"): "below",
+    ("", "ipap"): "below", ("", "lactate"): "above", ("", "sbp"): "below", ("", "ml_per_kg"): "above",
+    ("", "rr"): "above", ("", "pf"): "at or below", ("", "percent"): "above",
+    ("pf_below_150_ards", "pf"): "below",
+    ("rate_below_12_drowsy", "rr"): "below", ("rate_below_12_drowsy", "gcs"): "at or below",
+    ("weaning_ready", "rr"): "below", ("weaning_ready", "fio2"): "at or below",
+    ("pao2_below_45_on_highest_oxygen", "fio2"): "at or above",
+    ("pao2_below_45_on_highest_oxygen", "o2_flow"): "at or above",
+    ("hacor_above_5", "points"): "above", ("hacor_8_or_more", "points"): "above",
+    ("hacor_above_5_later", "points"): "above", ("hacor_updated_above_10_5", "points"): "above",
+}  # fmt: skip
+"""On which side of its limit a marker is met: by marker and limit, or by limit alone."""
 _UNITS = (
     ("_L_per_min_per_sqrt_cmH2O", "L/min per root of cmH2O"), ("_L_per_min", "L/min"), ("_per_min", "/min"),
     ("_mmol_L", "mmol/L"), ("_mmHg", "pressure"), ("_cmH2O", "cmH2O"), ("_ml_per_kg", "mL/kg"), ("_min", "min"),
@@ -127,7 +140,8 @@ def rules(policy: Policy, differences: Iterable[PolicyDifference]) -> tuple[Rule
 
 def _marker(key: str, rule: MarkerRule, told: list[PolicyDifference]) -> Rule:
     path = f"markers.{key}"
-    words = [_pressure(n, p) for n, p in rule.pressures.items()] + [_limit(n, v) for n, v in rule.limits.items()]
+    words = [_pressure(n, p, relation(key, n)) for n, p in rule.pressures.items()]
+    words += [_limit(n, v, relation(key, n)) for n, v in rule.limits.items()]
     more = []
     if rule.population != "any":
         more.append(
@@ -187,13 +201,18 @@ def _plain(value: object) -> str:
     return trimmed(float(value), 3) if isinstance(value, int | float) else str(value)
 
 
-def _limit(name: str, value: float) -> str:
+def relation(marker: str, limit: str) -> str:
+    """On which side of a limit a marker is met, e.g. "below"; "" where the limit's name says it or none is meant."""
+    return _RELATIONS.get((marker, limit), _RELATIONS.get(("", limit), ""))
+
+
+def _limit(name: str, value: float, side: str = "") -> str:
     label, unit = LIMITS.get(name, (name.replace("_", " "), ""))
-    return f"{label} {_number(value, unit)}"
+    return " ".join(x for x in (label, side, _number(value, unit)) if x)
 
 
-def _pressure(name: str, limit: PressureLimit) -> str:
-    label = LIMITS.get(name, (name, ""))[0]
+def _pressure(name: str, limit: PressureLimit, side: str) -> str:
+    label = " ".join(x for x in (LIMITS.get(name, (name, ""))[0], side) if x)
     return f"{label} {trimmed(limit.mmHg)} mmHg / {fixed(limit.kpa, 1)} kPa"
 
 

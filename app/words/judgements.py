@@ -31,7 +31,7 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
     "evidence.overdue": "{what:due} was due by {until:time}.",
     "evidence.score": "{score:name}[[ {points:trim} points]][[!points| between {lowest:trim} and {highest:trim}]] "
-        "at {at:time}, limit {limit:trim}[[; missing: {missing:list}]].",
+        "at {at:time}, above {limit:trim}[[; missing: {missing:list}]].",
     "evidence.score_rise": "{score:name} {before:trim} ({before_at:time}) to at least {lowest:trim} ({at:time}).",
     "evidence.share": "Off the mask for {percent:0} % of {minutes:minutes} "
         "({breaks:pick 1=one break;else=# breaks}), limit {limit:0} %.",
@@ -46,7 +46,7 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.timing": "{minutes:minutes} after {anchor:pick start=the start;change=the change;"
         "interface=the new interface;break_end=the break;else=the change} of {anchor_at:time}.",
     "evidence.twice": "{quantity:name} {first:q} ({first_at:time}) and {second:q} ({second_at:time}), "
-        "both {low:q} to {high:q} or lower.",
+        "both at or below {high:q}.",
     "evidence.unknown": "{quantity:name} is not known.",
     "evidence.value": "{quantity:name} {value:qt} at {at:time}, {relation} {limit:q}.",
     "evidence.venous": "A venous sample.",

@@ -28,7 +28,7 @@ def test_under_the_shipped_policy_names_are_as_written(key: str) -> None:
     ("key", "old", "new", "name"),
     [
         ("ph_below_severe", "7.25 }", "7.2 }", "pH below 7.20"),
-        ("ph_720_725_twice", "7.25,", "7.24,", "pH 7.20 to 7.24 twice, an hour apart"),
+        ("ph_720_725_twice", "7.25,", "7.24,", "pH 7.24 or lower twice, 1 h apart"),
         ("pf_low_at_1h", "146,", "150,", "P/F at or below 150 mmHg (20 kPa) after 1 h"),
         ("pao2_below_60", "mmHg = 60, kpa = 8.0", "mmHg = 55, kpa = 7.3", "PaO2 below 55 mmHg (7.3 kPa)"),
         ("rr_above_30", "rr = 30", "rr = 32", "Respiratory rate above 32"),

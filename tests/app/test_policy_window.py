@@ -61,8 +61,12 @@ def test_every_rule_is_told_with_source_and_certainty() -> None:
     told = {r.path: r for r in rules(found, ())}
     assert {f"markers.{k}" for k in found.markers} | {f"due.{k}" for k in found.due} <= set(told)
     assert all(r.source for r in told.values())
-    assert told["markers.paco2_rising"].limits.startswith("PaCO2 45 mmHg / 6.0 kPa")
+    assert told["markers.paco2_rising"].limits.startswith("PaCO2 above 45 mmHg / 6.0 kPa")
     assert "146 mmHg / 19.5 kPa" in told["markers.pf_low_at_1h"].limits
+    assert told["markers.ph_below_715"].limits == "pH below 7.15"
+    assert told["markers.hacor_8_or_more"].limits.startswith("points above 7")
+    assert told["markers.rr_above_30"].limits.startswith("respiratory rate above 30/min")
+    assert "respiratory rate below 25/min" in told["markers.weaning_ready"].limits
     assert told["state.hypercapnia_mmHg"].limits == "45 mmHg / 6.0 kPa"
     assert told["noise.paco2_mmHg"].limits == "3.3 mmHg / 0.44 kPa"
 
@@ -86,7 +90,7 @@ def test_the_page_shows_all_and_what_is_chosen(qtbot: QtBot, store: Path) -> Non
         assert policy_hash(WARD)[:16] in dialog.put_by.text()
         assert not dialog.notice.isVisible()
         everything = texts(dialog)
-        assert any(t.startswith("* pH below 7.20 | concern | pH 7.20 | everyone | confirmed") for t in everything)
+        assert any(t.startswith("* pH below 7.20 | concern | pH below 7.20 | everyone | confirmed") for t in everything)
         dialog.shown.button("off").click()
         assert [t.partition(" | ")[0] for t in texts(dialog) if "off" in t] == ["* Agitation"]
         dialog.shown.button("differs").click()

@@ -147,7 +147,8 @@ def _gcs(seen: Observed, at: Instant) -> tuple[float, Instant] | None:
 def _told(seen: Observed, c: Comparison) -> tuple[Message, ...]:
     assert c.gas.ph is not None
     assert c.base.ph is not None
-    limit = seen.policy.state.acidotic_below_ph.value
+    state = seen.policy.state  # the limit that the marker's name says
+    limit = (state.severe_below_ph if c.gas.ph < state.severe_below_ph.value else state.acidotic_below_ph).value
     return (
         say.value_is("ph", c.gas.ph, say.BELOW, limit, c.gas.at, c.gas.ph_text),
         say.changed("ph", c.base.ph, c.base.at, c.gas.ph, c.gas.at, ph_noise(seen.policy.noise)),

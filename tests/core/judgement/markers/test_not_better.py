@@ -98,6 +98,13 @@ def test_judged_against_a_change_though_better_than_at_the_start():
     assert (said["anchor"], said["minutes"]) == ("change", 60)
 
 
+def test_the_evidence_names_the_limit_that_the_name_of_the_marker_says():
+    severe = told("ph_not_better_severe", BASE + "02:00 ph 7.19 paco2 80")["evidence.value"].values
+    assert (severe["value"], severe["limit"]) == (7.19, 7.25)
+    acidotic = told("ph_not_better", BASE + "02:00 ph 7.26 paco2 74")["evidence.value"].values
+    assert (acidotic["value"], acidotic["limit"]) == (7.26, 7.35)
+
+
 @pytest.mark.parametrize(
     ("gas", "expected"),
     [("02:00 ph 7.30 paco2 70", ""), ("02:00 ph 7.299 paco2 70", "02:00-"), ("04:00 ph 7.28 paco2 70", "")],
