@@ -31,6 +31,8 @@ if TYPE_CHECKING:
 
 RETENTION_SET = "retention time set"
 MOST_DAYS = 36_525
+_NAMED_AFTER = 8 * DAY
+"""How long after its end a document may still name an episode: that of a shift of a week, closed a day late."""
 WHY = "what it replaced belongs to another episode"
 MOVED = "moved to another episode"
 _AT_ONCE = 200
@@ -114,8 +116,20 @@ def write(store: Store, episodes: Sequence[str], path: Path, *, by: str, now: In
     return Archived(path, tuple(episodes), *counts)
 
 
-def remove(store: Store, episode: str, *, by: str, now: Instant) -> None:
-    """Remove an episode whose retention time is over, for good; its digests stay in the chain.
+@dataclass(frozen=True, slots=True)
+class Removed:
+    """What went with an episode. `naming` documents were kept after its end and may name it still; their own time
+    is over from `naming_until` on."""
+
+    episode: str
+    documents: int = 0
+    naming: int = 0
+    naming_until: Instant | None = None
+
+
+def remove(store: Store, episode: str, *, by: str, now: Instant) -> Removed:
+    """Remove an episode whose retention time is over, for good; its digests stay in the chain. Documents and drafts
+    as old as the ward's time go with it, whomever they name.
 
     Raises:
         RecordError: `archive.no_retention`, `archive.not_ended`, `archive.too_early`.
@@ -127,7 +141,29 @@ def remove(store: Store, episode: str, *, by: str, now: Instant) -> None:
         raise refuse("archive.no_retention", accepted="the ward's retention time in days")
     if now < found.removable_from:
         raise refuse("archive.too_early", episode=episode, accepted=found.removable_from)
-    store.erase_episode(episode, reason=f"retention time of {retention_days(store)} days is over", by=by, now=now)
+    days = retention_days(store) or MOST_DAYS
+    old = now - days * DAY
+    before = store.documents()
+    store.erase_episode(episode, reason=_over(days), by=by, now=now, documents_until=old)
+    naming = [d.recorded_at for d in before if old < d.recorded_at <= found.ended_at + _NAMED_AFTER]
+    until = max(naming) + days * DAY if naming else None
+    return Removed(episode, sum(d.recorded_at <= old for d in before), len(naming), until)
+
+
+def remove_documents(store: Store, *, by: str, now: Instant) -> int:
+    """Remove the documents and drafts that are older than the ward's retention time; how many documents.
+
+    Raises:
+        RecordError: `archive.no_retention`.
+    """
+    days = retention_days(store)
+    if days is None:
+        raise refuse("archive.no_retention", accepted="the ward's retention time in days")
+    return store.erase_documents(now - days * DAY, reason=_over(days), by=by, now=now)
+
+
+def _over(days: int) -> str:
+    return f"retention time of {days} days is over"
 
 
 def _fill(store: Store, archive: Store, episodes: frozenset[str]) -> tuple[int, int]:

@@ -5,7 +5,7 @@ A store is safe to share between threads: writers take turns, readers see one co
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from types import TracebackType
@@ -181,7 +181,7 @@ class Store(StoreCare):
         drafts = tuple(DraftEntry(e) for e in entries)
         return self.append_drafts((DraftBatch(by, operation, drafts, chunks, source),), (now,))[0]
 
-    def append_drafts(self, drafts: Sequence[DraftBatch], times: Sequence[Instant]) -> list[Receipt]:
+    def append_drafts(self, drafts: Iterable[DraftBatch], times: Iterable[Instant]) -> list[Receipt]:
         """Add batches in order in one transaction, each recorded at its time (never before the one before)."""
         with self._opened.database.write() as connection:
             receipts = []
@@ -205,21 +205,38 @@ class Store(StoreCare):
         with self._opened.database.read() as connection:
             return person_events(connection, events, person, newest)
 
-    def erase_episode(self, episode: str, *, reason: str, by: str, now: Instant) -> Receipt:
-        """Remove every entry and sample of an episode for good; their digests stay in the chain.
+    def erase_episode(
+        self, episode: str, *, reason: str, by: str, now: Instant, documents_until: Instant | None = None
+    ) -> Receipt:
+        """Remove every row of an episode for good, and documents and drafts kept up to a moment; their digests stay
+        in the chain.
 
         Raises:
             RecordError: `erasure.unknown_episode`, `erasure.no_reason`.
         """
         with self._opened.database.write() as connection:
             gone = erasure.erasures_of(connection, episode, reason)
+            if documents_until is not None:
+                gone += erasure.erased_documents(connection, documents_until, reason)
+                erasure.remove_drafts(connection, documents_until)
             kept = erasure.kept_elsewhere(connection, episode)
             draft = DraftBatch(by, "erase", kept, erasures=gone)
             receipt = append_batch(connection, draft, now)
             index.note_batch(connection, draft, receipt)
-            erasure.remove(connection, episode)
+            erasure.remove(connection, gone, episode)
         fold_journal(self._opened.database)
         return receipt
+
+    def erase_documents(self, until: Instant, *, reason: str, by: str, now: Instant) -> int:
+        """Remove documents and drafts kept up to a moment; digests stay in the chain. How many documents went."""
+        with self._opened.database.write() as connection:
+            gone = erasure.erased_documents(connection, until, reason)
+            erasure.remove_drafts(connection, until)
+            if gone:
+                append_batch(connection, DraftBatch(by, "erase", erasures=gone), now)
+                erasure.remove(connection, gone, None)
+        fold_journal(self._opened.database)
+        return len(gone)
 
     # -- reading -------------------------------------------------------------------------------------
 
@@ -228,12 +245,18 @@ class Store(StoreCare):
         with self._opened.database.read() as connection:
             return reading.episode_entries(connection, episode, _ALL if head is None else head)
 
-    def samples(self, episode: str, head: int | None = None, channel: str | None = None) -> tuple[DeviceSamples, ...]:
-        """The device samples of an episode, one block per channel, with later blocks, masks and shifts applied."""
+    def samples(
+        self, episode: str, head: int | None = None, channel: str | None = None,
+        between: tuple[Instant, Instant] | None = None,
+    ) -> tuple[DeviceSamples, ...]:  # fmt: skip
+        """The device samples of an episode, one block per channel, with later blocks, masks and shifts applied.
+
+        With `between` all samples from the first to the second moment; others may be among them.
+        """
         top = _ALL if head is None else head
         with self._opened.database.read() as connection:
             spans = reading.spans_in_force(reading.episode_entries(connection, episode, top))
-            return reading.episode_samples(connection, episode, top, spans, channel)
+            return reading.episode_samples(connection, episode, top, spans, channel, between)
 
     def episode(self, key: str, head: int | None = None) -> Episode:
         """The episode as arrays, as known at a sequence."""

@@ -8,6 +8,7 @@ from pathlib import Path
 from app.commands.context import Context
 from app.formats import day
 from app.operations import archive as operations
+from app.words import sentence
 from core.record.instant import iso
 from core.record.message import refuse
 from storage.backup_rotation import YEAR
@@ -31,9 +32,10 @@ def run(context: Context, args: argparse.Namespace) -> int:
             operations.set_retention(store, who, now, int(days))
             text = f"Ended episodes are kept for {days} days at least."
         else:
-            count = operations.remove(store, who, now, tuple(args.subjects)).value
+            removed = operations.remove(store, who, now, tuple(args.subjects)).value
             gone = day(now + YEAR, context.local_zone())
-            text = f"{count} episode(s) removed for good. The last backup that holds them expires by {gone}."
+            lines = [sentence(m, context.reader()) for m in operations.told(removed)]
+            text = "\n".join([*lines, f"The last backup that holds them expires by {gone}."])
     context.answer(text, {"done": args.what, "subjects": args.subjects})
     return 0
 

@@ -27,7 +27,7 @@ from app.operations.outcome import Outcome
 from app.session import SessionModel
 from app.theme import Theme
 from app.words import Reader, sentence
-from storage.archive import MOST_DAYS, Archived, Ended
+from storage.archive import MOST_DAYS, Archived, Ended, Removed
 from storage.backup_rotation import YEAR
 
 
@@ -143,7 +143,8 @@ class ArchiveDialog(AskingDialog):
     def _ask_remove(self) -> None:
         gone = day(self._model.session.now() + YEAR, self._reader.zone)
         told = self.tr(
-            "Remove {count} episodes for good? This cannot be undone. Their digests stay in the ledger; the last "
+            "Remove {count} episodes for good? This cannot be undone. Closed handovers as old as the ward's "
+            "retention time go with them. Their digests stay in the ledger; the last "
             "backup that holds them expires by {day}."
         )
         asked = QMessageBox.question(self, self.windowTitle(), told.format(count=len(self.chosen()), day=gone))
@@ -154,8 +155,8 @@ class ArchiveDialog(AskingDialog):
         """Remove the chosen ones for good."""
         self._model.ask(operations.remove, self.chosen(), done=self._removed, failed=self.failed)
 
-    def _removed(self, outcome: Outcome[int]) -> None:
-        self.refuse(self.tr("{count} episodes were removed.").format(count=outcome.value))
+    def _removed(self, outcome: Outcome[tuple[Removed, ...]]) -> None:
+        self.refuse("\n".join(sentence(m, self._reader) for m in operations.told(outcome.value)))
         self._ask_list()
 
     def failed(self, failure: Failure) -> None:

@@ -9,10 +9,11 @@ from typing import TYPE_CHECKING
 from app.operations.outcome import Outcome
 from app.operations.people import require_lead
 from core.record.instant import Instant
+from core.record.message import Message
 from storage import archive
 
 if TYPE_CHECKING:
-    from storage.archive import Archived, Ended
+    from storage.archive import Archived, Ended, Removed
     from storage.store import Store
 
 
@@ -59,14 +60,27 @@ def set_retention(store: Store, who: str, now: Instant, request: int) -> Outcome
     return Outcome(None, store.head())
 
 
-def remove(store: Store, who: str, now: Instant, request: tuple[str, ...]) -> Outcome[int]:
-    """Remove episodes whose retention time is over, for good; a ward lead does. How many were removed.
+def remove(store: Store, who: str, now: Instant, request: tuple[str, ...]) -> Outcome[tuple[Removed, ...]]:
+    """Remove episodes whose retention time is over, for good, with documents as old; a ward lead does. None named:
+    such documents alone.
 
     Raises:
         RecordError: `people.lead_needed`, `archive.no_retention`, `archive.not_ended`, `archive.too_early`: those
             before it are removed.
     """
     require_lead(store, who)
-    for episode in request:
-        archive.remove(store, episode, by=who, now=now)
-    return Outcome(len(request), store.head())
+    if not request:
+        gone = archive.remove_documents(store, by=who, now=now)
+        return Outcome((archive.Removed("", gone),), store.head())
+    removed = tuple(archive.remove(store, episode, by=who, now=now) for episode in request)
+    return Outcome(removed, store.head())
+
+
+def told(removed: tuple[Removed, ...]) -> tuple[Message, ...]:
+    """What went, and what may still name those who went, in messages."""
+    episodes = sum(bool(r.episode) for r in removed)
+    lines = [Message("archive.removed", {"episodes": episodes, "documents": sum(r.documents for r in removed)})]
+    until = [r.naming_until for r in removed if r.naming_until is not None]
+    if until:
+        lines.append(Message("archive.still_named", {"count": max(r.naming for r in removed), "until": max(until)}))
+    return tuple(lines)

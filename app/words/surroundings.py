@@ -15,6 +15,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "archive.no_retention": "Nothing is removed before the ward has said how long it keeps. Accepted: {accepted}.",
     "archive.not_ended": "{episode} has no recorded end. Accepted: {accepted}.",
     "archive.nothing": "There is nothing to archive. Accepted: {accepted}.",
+    "archive.removed": "{episodes:0} episode(s) and {documents:0} closed handover(s) were removed for good.",
+    "archive.still_named": "{count:0} closed handover(s) kept after the end may name them still: their own time is over "
+        "on {until:time}. Remove again then.",
     "archive.too_early": "The retention time of {episode} is not over. Accepted: from {accepted:time} on.",
     "demo.sample_refused": "The sample shift cannot be taken in: {detail}.",
     "error.unexpected": "Something went wrong in the program: {detail}. Nothing was recorded by this step.",
@@ -45,11 +48,11 @@ TEMPLATES: Final[dict[str, str]] = {
         "not to blame, and the store itself may be whole. Put the key file of a backup in its place.",
     "key.envelope_missing": "This file is no store, or an encrypted one whose key file {path} is not beside it. "
         "Put it back, or that of a backup.",
+    "key.of_another_store": "That key file opens, but not {path}: it belongs to another store, or the store's first "
+        "page is damaged. Nothing was changed. Try the key file of another backup.",
     "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
         "Update the program.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
-    "key.of_another_store": "That key file opens, but not {path}: it belongs to another store, or the store's first "
-        "page is damaged. Nothing was changed. Try the key file of another backup.",
     "replay.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
         "Replay fewer episodes, or a shorter span.",

@@ -110,15 +110,22 @@ def test_an_open_episode_is_not_archived_and_nothing_is_left_of_a_failure(
 
 def test_an_episode_stays_until_its_time_is_over(ward: Store) -> None:
     ended_at = NOW + 60 * MINUTE
+    ward.put_document("handover", "of its time", b"%PDF", "AB", ended_at)
     assert refused(lambda: archive.remove(ward, "E1", by="AB", now=NOW + 999 * DAY)) == "archive.no_retention"
     assert refused(lambda: archive.set_retention(ward, 0, by="AB", now=NOW)) == "archive.bad_retention"
     assert refused(lambda: archive.set_retention(ward, 40_000, by="AB", now=NOW)) == "archive.bad_retention"
-    archive.set_retention(ward, 30, by="AB", now=NOW + DAY)
+    archive.set_retention(ward, 30, by="AB", now=ended_at + DAY)
     assert {e.episode: e.removable_from for e in archive.ended(ward)} == {
         "E1": ended_at + 30 * DAY, "E2": ended_at + 30 * DAY}  # fmt: skip
     assert refused(lambda: archive.remove(ward, "E1", by="AB", now=ended_at + 30 * DAY - 1)) == "archive.too_early"
     assert refused(lambda: archive.remove(ward, "E3", by="AB", now=NOW + 999 * DAY)) == "archive.not_ended"
-    archive.remove(ward, "E1", by="AB", now=ended_at + 30 * DAY)
+    for name, at in (("after its end", ended_at + DAY), ("much later", ended_at + 20 * DAY)):
+        ward.put_document("handover", name, b"%PDF", "AB", at)
+    removed = archive.remove(ward, "E1", by="AB", now=ended_at + 30 * DAY + MINUTE)
+    assert removed == archive.Removed("E1", 1, 1, ended_at + 31 * DAY)
+    assert [d.name for d in ward.documents()] == ["after its end", "much later"]
+    assert archive.remove_documents(ward, by="AB", now=ended_at + 31 * DAY) == 1
+    assert [d.name for d in ward.documents()] == ["much later"]
     assert ward.episode_keys() == ("E2", "E3")
     assert ward.verify() == ()
     assert b"label of E1" not in ward.path.read_bytes()
