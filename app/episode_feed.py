@@ -59,6 +59,15 @@ class EpisodeFeed(QObject):
         return self.indication() in self._kept
 
     @property
+    def scope(self) -> str:
+        """For whom the panels shown are kept: the indication with its own, else its kind."""
+        return self.indication() if self.has_own else self.family()
+
+    def has_kept(self, scope: str) -> bool:
+        """Whether panels are kept for an indication or a kind."""
+        return scope in self._kept
+
+    @property
     def sets(self) -> Mapping[str, PanelSet]:
         """Sets of panels that were saved under a name."""
         return self._sets

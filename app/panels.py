@@ -10,6 +10,7 @@ import json
 import tomllib
 from collections.abc import Mapping
 from dataclasses import asdict, dataclass, replace
+from math import isfinite
 from typing import Any, Final
 
 from core.record.channels import CHANNELS, HYPOXAEMIC, Group, Kind
@@ -20,13 +21,16 @@ COMPUTED: Final = {"pf": "mmHg", "pressure_support": "cmH2O", "hco3_calculated":
 LEAST_HEIGHT, MOST_HEIGHT = 0.5, 3.0
 MOST_PANELS: Final = 12
 MOST_CHANNELS: Final = 5
-FORMAT: Final = 1
+FORMAT: Final = 2
+"""2 brought a range for the second unit's axis; format 1 is read as before."""
+_ENDS: Final = ("low", "high", "second_low", "second_high")
 
 
 @dataclass(frozen=True, slots=True)
 class Panel:
-    """One chart. `low`/`high` fix the first unit's axis; None lets it follow the values. `height` is a share
-    of the room, 1 for an ordinary panel. `bands`: draw target and policy limits."""
+    """One chart. `low`/`high` fix the first unit's axis, `second_low`/`second_high` the second's, in canonical
+    units; None lets an end follow the values. `height` is a share of the room, 1 for an ordinary panel. `bands`:
+    draw target and policy limits."""
 
     key: str
     title: str
@@ -35,6 +39,13 @@ class Panel:
     low: float | None = None
     high: float | None = None
     bands: bool = True
+    second_low: float | None = None
+    second_high: float | None = None
+
+    @property
+    def ends(self) -> tuple[tuple[float | None, float | None], ...]:
+        """The fixed ends of each unit's axis."""
+        return (self.low, self.high), (self.second_low, self.second_high)
 
 
 def can_be_drawn(channel: str) -> bool:
@@ -82,16 +93,19 @@ def checked(panel: Panel) -> Panel:
             units=", ".join(units_of(panel.channels)),
             accepted="one or two units",
         )
-    if panel.low is not None and panel.high is not None and panel.low >= panel.high:
-        raise refuse(
-            "panel.axis_upside_down",
-            title=panel.title,
-            low=panel.low,
-            high=panel.high,
-            accepted="the low end below the high end",
-        )
+    for low, high in panel.ends:
+        _check_axis(panel.title, low, high)
     height = min(max(panel.height, LEAST_HEIGHT), MOST_HEIGHT)
     return replace(panel, title=panel.title.strip(), height=height)
+
+
+def _check_axis(title: str, low: float | None, high: float | None) -> None:
+    for end in (low, high):
+        if end is not None and not isfinite(end):
+            raise refuse("panel.axis_unreadable", title=title, value=str(end), accepted="a number")
+    if low is not None and high is not None and low >= high:
+        accepted = "the low end below the high end"
+        raise refuse("panel.axis_upside_down", title=title, low=low, high=high, accepted=accepted)
 
 
 @dataclass(frozen=True, slots=True)
@@ -205,7 +219,7 @@ def to_toml(panels: PanelSet) -> str:
             f"channels = {json.dumps(list(p.channels))}",
             f"height = {float(p.height)!r}",
         ]
-        lines += [f"{k} = {float(v)!r}" for k, v in (("low", p.low), ("high", p.high)) if v is not None]
+        lines += [f"{k} = {float(v)!r}" for k in _ENDS if (v := getattr(p, k)) is not None]
         lines += [f"bands = {'true' if p.bands else 'false'}", ""]
     return "\n".join(lines)
 

@@ -7,6 +7,7 @@ serves many widgets.
 
 from __future__ import annotations
 
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
@@ -102,7 +103,7 @@ QCheckBox::indicator, QListView::indicator, QTreeView::indicator {{
     width: {g4}px; height: {g4}px; background: {raised}; border: 1px solid {edge}; border-radius: {g1}px;
 }}
 QCheckBox::indicator:checked, QListView::indicator:checked, QTreeView::indicator:checked {{
-    background: {accent}; border: 1px solid {accent}; }}
+    background: {accent}; border: 1px solid {accent}; image: url("{tick}"); }}
 QSlider:horizontal {{ min-height: {g6}px; }}
 QSlider::groove:horizontal {{ height: {g1}px; background: {line}; border-radius: 2px; }}
 QSlider::sub-page:horizontal {{ background: {accent}; border-radius: 2px; }}
@@ -131,7 +132,7 @@ QHeaderView::section {{
 }}
 QTableCornerButton::section {{ background: {raised}; border: 0; }}
 
-QMenuBar {{ background: {ground}; border-bottom: 1px solid {line}; }}
+QMenuBar {{ background: {ground}; border-bottom: 1px solid {line}; spacing: 2px; }}
 QMenuBar::item {{ padding: {menu}px {menu_side}px; background: transparent; }}
 QMenuBar::item:selected {{ background: {wash}; }}
 QMenu {{ background: {raised}; border: 1px solid {line}; padding: {g1}px; }}
@@ -173,6 +174,7 @@ QScrollBar::add-line, QScrollBar::sub-line {{ width: 0; height: 0; }}
 QScrollBar::add-page, QScrollBar::sub-page {{ background: transparent; }}
 """
 
+_LOOK = Path(__file__).parent / "look"
 _SURFACES = ("ground", "raised", "sunken", "line", "edge", "wash")
 _INKS = ("ink", "ink_quiet", "accent", "on_accent", "support_edge")
 
@@ -188,4 +190,5 @@ def sheet(theme: Theme) -> str:
     targets = {"target": theme.px(24), "choice": theme.px(20), "menu": theme.px(10)}
     targets |= {"glove_button": theme.px(44) - 2, "glove_field": theme.px(44) - 2 - 2 * theme.px(4)}
     targets |= {"menu_side": theme.px(8), "tab": theme.px(5), "tab_1": theme.px(5) - 1}
-    return _SHEET.format(radius=8, bar=3, **targets, **distances, **inner, **sizes, **colours)
+    tick = (_LOOK / f"tick-{'dark' if theme.dark else 'light'}.svg").as_posix()
+    return _SHEET.format(radius=8, bar=3, tick=tick, **targets, **distances, **inner, **sizes, **colours)

@@ -5,16 +5,23 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
+from app.episode_feed import shipped_titles
 from app.operations import panel as panel_operations
 from app.operations.outcome import Outcome
-from app.panels import PanelSet, to_json
+from app.panels import PanelSet, shipped, to_json
 
 if TYPE_CHECKING:
     from app.chart.stack import PanelStack
+    from app.window import MainWindow
 
 
 class EpisodeDeeds(Doer):
     """Serves the menu Episode."""
+
+    def __init__(self, window: MainWindow) -> None:
+        super().__init__(window)
+        self._before: dict[str, list[PanelSet]] = {}
+        """What was kept before, for each indication or kind, since the window was opened."""
 
     def do_show_episode(self) -> None:
         """Ribbon, panels, flags, due items and levers of the selected episode."""
@@ -47,14 +54,22 @@ class EpisodeDeeds(Doer):
             self._editor = PanelEditor(
                 feed.panels(), feed.family(), self.window.theme, self.window,
                 sets=feed.sets, indication=feed.indication(), own=feed.has_own,
+                gas_unit=self.window.preferences.gas_unit, before=self._before.get(feed.scope, ()),
             )  # fmt: skip
             self._editor.kept.connect(self.keep_panels)
             self._editor.set_kept.connect(self.keep_set)
             self._editor.open()
 
     def keep_panels(self, panels: PanelSet | None) -> None:
-        """Keep the user's panels; None goes back to the shipped ones."""
-        self._keep(f"panels.{self._editor.sets.scope}", panels)
+        """Keep the user's panels; None goes back to the shipped ones. Undo comes back to those before."""
+        feed, scope = self.window.episode_feed, self._editor.sets.scope
+        if feed is None:
+            return
+        if scope == feed.scope:
+            self._before.setdefault(scope, []).append(feed.panels())
+        if panels is None and scope != feed.family() and feed.has_kept(feed.family()):
+            panels = shipped(feed.family(), shipped_titles())  # forgetting its own would bring back its kind's
+        self._keep(f"panels.{scope}", panels)
 
     def keep_set(self, name: str, panels: PanelSet | None) -> None:
         """Keep a set of panels under a name; None forgets it."""

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 
 from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QKeySequence, QShortcut
 from PySide6.QtWidgets import (
     QCheckBox,
     QDialog,
@@ -23,13 +24,17 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.dialogs.axis_fields import AxisFields
 from app.dialogs.panel_sets import PanelSets
+from app.episode.traces import shown_as
 from app.episode_feed import shipped_titles
-from app.panels import PanelSet, drawable, from_toml, shipped, to_toml, unit_of
+from app.failure import failure_of
+from app.panels import Panel, PanelSet, drawable, from_toml, shipped, to_toml
 from app.phrases import computed_name
 from app.theme import Theme
+from app.whole_file import write_whole
 from app.words import Reader, sentence
-from core.record.message import RecordError
+from core.record.message import RecordError, refuse
 
 _KEY = Qt.ItemDataRole.UserRole
 
@@ -44,16 +49,21 @@ class PanelEditor(QDialog):
     def __init__(
         self, panels: PanelSet, family: str, theme: Theme, parent: QWidget | None = None, *,
         sets: Mapping[str, PanelSet] | None = None, indication: str = "", own: bool = False,
+        gas_unit: str = "mmHg", before: Sequence[PanelSet] = (),
     ) -> None:  # fmt: skip
+        """`before`: the panels that were kept before these, oldest first; undo goes back to them too."""
         super().__init__(parent)
+        self._gas_unit = gas_unit
         self.sets = PanelSets(sets or {}, family, indication, own, theme)
         self.panels, self._family, self._theme = panels, family, theme
-        self._history: list[PanelSet] = []
+        self._history: list[PanelSet] = list(before)
         self._filling = False
         self._reset = False
         self.setWindowTitle(self.tr("Panels"))
+        self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.list, self.channels = QListWidget(), QListWidget()
-        self.name, self.low, self.high = QLineEdit(), QLineEdit(), QLineEdit()
+        self.name = QLineEdit()
+        self.axes = AxisFields(self.tr("Axis")), AxisFields(self.tr("Second axis"))
         self.height_slider = QSlider(Qt.Orientation.Horizontal)
         self.height_slider.setRange(5, 30)
         self.bands = QCheckBox(self.tr("Draw targets and limits"))
@@ -98,17 +108,19 @@ class PanelEditor(QDialog):
         fields = (
             (self.tr("Name"), self.name),
             (self.tr("Channels, of one or two units"), self.channels),
-            (self.tr("Axis from"), self.low),
-            (self.tr("Axis to"), self.high),
             (self.tr("Height"), self.height_slider),
         )
-        for n, (word, widget) in enumerate(fields):
+        for word, widget in fields:
             widget.setAccessibleName(word)
-            grid.addWidget(QLabel(word), n, 0, Qt.AlignmentFlag.AlignTop)
-            grid.addWidget(widget, n, 1)
-        grid.addWidget(self.bands, len(fields), 1)
-        for field in (self.low, self.high):
-            field.setPlaceholderText(self.tr("follows the values"))
+        told = [(QLabel(word), widget) for word, widget in fields]
+        rows: list[tuple[QLabel, QWidget]] = [*told[:2], *((axis.label, axis) for axis in self.axes), told[2]]
+        for n, (label, field) in enumerate(rows):
+            label.setBuddy(field)
+            label.setWordWrap(True)
+            grid.addWidget(label, n, 0, Qt.AlignmentFlag.AlignTop)
+            grid.addWidget(field, n, 1)
+        grid.addWidget(self.bands, len(rows), 1)
+        grid.setColumnStretch(1, 1)
         return grid
 
     def _tools(self) -> QGridLayout:
@@ -120,6 +132,7 @@ class PanelEditor(QDialog):
             (self.tr("Down"), self.down),
             (self.tr("Undo"), self.undo),
         )
+        QShortcut(QKeySequence.StandardKey.Undo, self, self.undo)
         tools = QGridLayout()
         for n, (word, slot) in enumerate(buttons):
             tools.addWidget(self._button(word, slot), n // 3, n % 3)
@@ -149,9 +162,10 @@ class PanelEditor(QDialog):
     def _connect(self) -> None:
         self.list.currentItemChanged.connect(self._chosen)
         self.name.editingFinished.connect(self._edited)
-        self.low.editingFinished.connect(self._edited)
-        self.high.editingFinished.connect(self._edited)
+        for axis in self.axes:
+            axis.edited.connect(self._edited)
         self.height_slider.sliderReleased.connect(self._edited)
+        self.height_slider.valueChanged.connect(self._height_stepped)
         self.bands.clicked.connect(self._edited)
         self.channels.itemChanged.connect(self._channel_ticked)
         self.sets.chosen.connect(self.take_set)
@@ -180,18 +194,23 @@ class PanelEditor(QDialog):
     def _fill(self) -> None:
         panel = self.panels.get(self.key)
         self.name.setText(panel.title)
-        self.low.setText("" if panel.low is None else f"{panel.low:g}")
-        self.high.setText("" if panel.high is None else f"{panel.high:g}")
+        self._fill_axes(panel)
         self.height_slider.setValue(round(panel.height * 10))
         self.bands.setChecked(panel.bands)
         self.channels.clear()
         order = (*panel.channels, *(c for c in drawable() if c not in panel.channels))
         for channel in order:
-            item = QListWidgetItem(_named(channel))
+            item = QListWidgetItem(_named(channel, self._gas_unit))
             item.setData(_KEY, channel)
             item.setFlags(item.flags() | Qt.ItemFlag.ItemIsUserCheckable)
             item.setCheckState(Qt.CheckState.Checked if channel in panel.channels else Qt.CheckState.Unchecked)
             self.channels.addItem(item)
+
+    def _fill_axes(self, panel: Panel) -> None:
+        shown = {s.unit: s for s in (shown_as(c, self._gas_unit) for c in reversed(panel.channels))}
+        units = [shown[u] for u in dict.fromkeys(shown_as(c, self._gas_unit).unit for c in panel.channels)]
+        for n, axis in enumerate(self.axes):
+            axis.show_ends(*panel.ends[n], units[n] if n < len(units) else None)
 
     def _chosen(self) -> None:
         if not self._filling:
@@ -200,25 +219,28 @@ class PanelEditor(QDialog):
             self._filling = False
 
     def _edited(self) -> None:
+        """Take what the fields say; what cannot be read stays in its field and is said."""
         if self._filling:
             return
-        ends = [self._number(field) for field in (self.low, self.high)]
-        self._become(
-            self.panels.changed,
-            self.key,
-            title=self.name.text(),
-            low=ends[0],
-            high=ends[1],
-            height=self.height_slider.value() / 10,
-            bands=self.bands.isChecked(),
-        )
-
-    def _number(self, field: QLineEdit) -> float | None:
-        text = field.text().strip().replace(",", ".")
         try:
-            return float(text) if text else None
-        except ValueError:
-            return None
+            made = self._as_filled()
+        except RecordError as error:
+            self.wrong.setText(sentence(error.message, Reader()))
+            return
+        self._become(lambda: made)
+
+    def _height_stepped(self) -> None:
+        """Keys move the slider in steps; while the mouse drags it, its last place counts."""
+        if not self.height_slider.isSliderDown():
+            self._edited()
+
+    def _as_filled(self) -> PanelSet:
+        title = self.name.text()
+        (low, high), (second_low, second_high) = (axis.ends(title) for axis in self.axes)
+        return self.panels.changed(
+            self.key, title=title, low=low, high=high, second_low=second_low, second_high=second_high,
+            height=self.height_slider.value() / 10, bands=self.bands.isChecked(),
+        )  # fmt: skip
 
     def _channel_ticked(self, _item: QListWidgetItem) -> None:
         if self._filling:
@@ -237,6 +259,8 @@ class PanelEditor(QDialog):
             self._show(key)
             return
         self.wrong.setText("")
+        if made == self.panels:
+            return
         self._reset = False
         self._history.append(self.panels)
         self.panels = made
@@ -273,13 +297,13 @@ class PanelEditor(QDialog):
         """Back to the set before the last change."""
         if self._history:
             key = self.key
-            self.panels = self._history.pop()
+            self.panels, self._reset = self._history.pop(), False
             self._show(key if key in [p.key for p in self.panels.panels] else self.panels.panels[0].key)
 
     def reset(self) -> None:
         """The shipped panels again."""
         self._become(shipped, self._family, shipped_titles())
-        self._reset = True
+        self._reset = not self.wrong.text()
 
     def take_set(self, panels: PanelSet) -> None:
         """Put a named set in place of the panels; undo goes back."""
@@ -294,7 +318,10 @@ class PanelEditor(QDialog):
         self.set_kept.emit(name, None)
 
     def keep(self) -> None:
-        """Keep the panels for those they are kept for."""
+        """Keep the panels for those they are kept for; not while a field cannot be read."""
+        self._edited()
+        if self.wrong.text():
+            return
         self.kept.emit(None if self._reset else self.panels)
         self.accept()
 
@@ -303,23 +330,27 @@ class PanelEditor(QDialog):
         chosen, _ = QFileDialog.getSaveFileName(self, self.tr("Save panels"), "panels.toml", "TOML (*.toml)")
         if chosen:
             try:
-                Path(chosen).write_text(to_toml(self.panels), "utf-8")
+                write_whole(Path(chosen), to_toml(self.panels).encode())
             except OSError as error:
-                self.wrong.setText(str(error))
+                self.wrong.setText(sentence(failure_of(error).message, Reader()))
 
     def take_file(self) -> None:
         """Read them from TOML."""
         chosen, _ = QFileDialog.getOpenFileName(self, self.tr("Take panels"), "", "TOML (*.toml)")
         if chosen:
-            try:
-                text = Path(chosen).read_text("utf-8")
-            except (OSError, UnicodeDecodeError) as error:
-                self.wrong.setText(str(error))
-                return
-            self._become(from_toml, text)
+            self._become(_read_file, Path(chosen))
 
 
-def _named(channel: str) -> str:
+def _read_file(path: Path) -> PanelSet:
+    try:
+        return from_toml(path.read_text("utf-8"))
+    except OSError as error:
+        raise RecordError(failure_of(error).message) from None
+    except UnicodeDecodeError as error:
+        raise refuse("panel.unreadable", detail=str(error), accepted="panels as saved here") from None
+
+
+def _named(channel: str, gas_unit: str) -> str:
     """A channel with its unit, where the unit says more than the name."""
-    name, unit = computed_name(channel), unit_of(channel)
-    return name if unit in ("", name, "points") else f"{name}, {'%' if unit == 'fraction' else unit}"
+    name, unit = computed_name(channel), shown_as(channel, gas_unit).unit
+    return name if unit in ("", name) else f"{name}, {unit}"

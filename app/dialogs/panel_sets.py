@@ -31,7 +31,7 @@ class PanelSets(QWidget):
         self.save, self.forget = QPushButton(self.tr("Save as set...")), QPushButton(self.tr("Forget set"))
         for button in (self.save, self.forget):
             button.setAutoDefault(False)
-        kinds = {"hypoxaemic": self.tr("all whose oxygen fails"), "usual": self.tr("all others")}
+        kinds = {"hypoxaemic": self.tr("every hypoxaemic failure"), "usual": self.tr("every other indication")}
         self.kept_for.addItem(kinds[family], family)
         if indication:
             only = self.tr("{indication} only").format(indication=indication_word(indication))

@@ -51,7 +51,7 @@ _STEPS: Final = (0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200,
 
 
 def scales_of(panel: Panel, traces: Sequence[Trace], gas_unit: str, areas: Sequence[Area] = ()) -> tuple[Scale, ...]:
-    """One scale for each unit, in the order of the channels; a fixed range holds for the first unit."""
+    """One scale for each unit, in the order of the channels; an end that is fixed stays, the other follows."""
     by_unit: dict[str, list[str]] = {}
     for channel in panel.channels:
         by_unit.setdefault(shown_as(channel, gas_unit).unit, []).append(channel)
@@ -63,16 +63,18 @@ def scales_of(panel: Panel, traces: Sequence[Trace], gas_unit: str, areas: Seque
         values = [t.v for t in traces if t.unit == unit]
         values += [end for a in areas if a.unit == unit for end in (a.low, a.high)]
         low, high = widened(low, high, values)
-        if n == 0:
-            low, high = _fixed(panel, factors[0].factor, low, high)
+        low, high = _fixed(panel.ends[n], factors[0].factor, low, high)
         made.append(Scale(unit, low, high, max(f.decimals for f in factors)))
     return tuple(made)
 
 
-def _fixed(panel: Panel, factor: float, low: float, high: float) -> tuple[float, float]:
-    new_low = low if panel.low is None else panel.low * factor
-    new_high = high if panel.high is None else panel.high * factor
-    return (new_low, new_high) if new_low < new_high else (low, high)
+def _fixed(ends: tuple[float | None, float | None], factor: float, low: float, high: float) -> tuple[float, float]:
+    new_low = low if ends[0] is None else ends[0] * factor
+    new_high = high if ends[1] is None else ends[1] * factor
+    if new_low >= new_high:  # one end was fixed beyond all values: it stays, the other makes room
+        span = high - low
+        return (new_low, new_low + span) if ends[0] is not None else (new_high - span, new_high)
+    return new_low, new_high
 
 
 def widened(low: float, high: float, values: Sequence[NDArray[np.float64]]) -> tuple[float, float]:

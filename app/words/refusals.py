@@ -78,12 +78,14 @@ TEMPLATES: Final[dict[str, str]] = {
     "line.number_alone": "The number {value} alone does not say what it is. For example: {accepted}",
     "line.oxygen_unclear": "Oxygen {value} could be a flow or an FiO2. Say which: {accepted}.",
     "line.ps_means_ipap": "Pressure support {ps} over EPAP {epap:trim} is IPAP {ipap:trim} cmH2O.",
+    "line.site_assumed": "No sample site is named: taken as arterial, unless this gas has one already.",
     "line.too_long": "The line is too long. Accepted: at most {accepted}.",
     "line.twice": "{channel:name} stands twice on the line. Accepted: {accepted}.",
     "line.unconfirmed":
         "{count:pick 1=One value needs;else=Several values need} a yes before being recorded.",
     "line.value_missing": "{channel:name} has no value on the line. Accepted: {accepted}.",
     "line.word_unknown": "'{word}' is not understood. For example: {accepted}",
+    "panel.axis_unreadable": "Panel '{title}': the end of an axis cannot be '{value}'. Accepted: {accepted}.",
     "panel.axis_upside_down": "Panel '{title}': the low end {low:trim} is not below the high end {high:trim}. "
         "Accepted: {accepted}.",
     "panel.channel_unknown": "Panel '{title}': '{channel}' cannot be drawn. Accepted: {accepted}.",

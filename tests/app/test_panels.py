@@ -117,6 +117,8 @@ panels = st.builds(
     low=st.none() | st.floats(0, 5),
     high=st.none() | st.floats(6, 90),
     bands=st.booleans(),
+    second_low=st.none() | st.floats(0, 5),
+    second_high=st.none() | st.floats(6, 90),
 )
 
 
@@ -134,6 +136,14 @@ def test_a_kept_set_comes_back_unchanged(made):
         ('{"format": 99, "panels": []}', "panel.format_newer"),
         ('{"format": 1, "panels": []}', "panel.last"),
         (
+            '{"format": 2, "panels": [{"key": "a", "title": "A", "channels": ["ph"], "low": NaN}]}',
+            "panel.axis_unreadable",
+        ),
+        (
+            '{"format": 2, "panels": [{"key": "a", "title": "A", "channels": ["ph"], "second_high": Infinity}]}',
+            "panel.axis_unreadable",
+        ),
+        (
             '{"format": 1, "panels": [{"key": "a", "title": "A", "channels": ["ph"], "colour": 3}]}',
             "panel.unreadable",
         ),
@@ -144,3 +154,8 @@ def test_a_set_that_cannot_be_read_is_refused_in_words(text, key):
     with pytest.raises(RecordError) as error:
         from_json(text)
     assert key_of(error) == key
+
+
+def test_a_set_of_the_first_format_is_still_read():
+    text = '{"format": 1, "panels": [{"key": "a", "title": "A", "channels": ["ph"], "low": 7.0, "high": 7.6}]}'
+    assert from_json(text).panels == (Panel("a", "A", ("ph",), low=7.0, high=7.6),)

@@ -295,12 +295,13 @@ def test_a_set_is_saved_by_name_taken_undone_and_forgotten(qtbot, window):
 
 def test_height_axis_bands_and_order_are_changed_and_drawn(qtbot, window):
     editor = open_panels(window)
-    editor.low.setText("7.0")
-    editor.high.setText("7.6")
-    editor.high.editingFinished.emit()
+    editor.axes[0].low.setText("7.0")
+    editor.axes[0].high.setText("7,6")
+    editor.axes[0].high.editingFinished.emit()
     editor.bands.click()
-    editor.height_slider.setValue(20)
-    editor.height_slider.sliderReleased.emit()
+    editor.height_slider.setValue(19)
+    editor.height_slider.setFocus()
+    qtbot.keyClick(editor.height_slider, Qt.Key.Key_Right)
     editor.down()
     editor.keep()
     until(qtbot, lambda: window.episode_feed.panels().panels[1].key == "gas")
@@ -308,6 +309,62 @@ def test_height_axis_bands_and_order_are_changed_and_drawn(qtbot, window):
     assert (panel.low, panel.high, panel.bands, panel.height) == (7.0, 7.6, False, 2.0)
     until(qtbot, lambda: window.pages.episode.stack.spec.panels[1].scales[0].low == 7.0)
     assert window.pages.episode.stack.spec.panels[1].scales[0].high == 7.6
+
+
+def test_both_axes_are_fixed_in_the_reader_s_unit(qtbot, window):
+    window.prefer(gas_unit="kPa")
+    settled(qtbot, window)
+    editor = open_panels(window)
+    assert "kPa" in editor.axes[1].label.text()
+    editor.axes[1].low.setText("4")
+    editor.axes[1].high.setText("12")
+    editor.axes[1].high.editingFinished.emit()
+    assert editor.panels.panels[0].second_high == pytest.approx(90.0, abs=0.05)  # mmHg
+    editor.keep()
+    until(qtbot, lambda: window.pages.episode.stack.spec.panels[0].scales[1].high == pytest.approx(12))
+    assert window.pages.episode.stack.spec.panels[0].scales[1].low == pytest.approx(4)
+
+
+@pytest.mark.parametrize("typed", ["seven", "7..2", "nan", "inf"])
+def test_an_end_that_cannot_be_read_is_said_kept_in_its_field_and_never_drawn(qtbot, window, typed):
+    editor = open_panels(window)
+    before = editor.panels
+    editor.axes[0].low.setText(typed)
+    editor.axes[0].low.editingFinished.emit()
+    assert typed in editor.wrong.text()
+    assert editor.axes[0].low.text() == typed
+    editor.keep()
+    assert editor.isVisible()
+    assert editor.panels == before
+    editor.reject()
+
+
+def test_undo_comes_back_to_panels_that_were_kept(qtbot, window):
+    editor = open_panels(window)
+    first = editor.panels
+    editor.duplicate()
+    editor.keep()
+    until(qtbot, lambda: len(window.episode_feed.panels().panels) == 4)
+    again = open_panels(window)
+    qtbot.waitUntil(again.isActiveWindow)
+    qtbot.keyClick(again.list, Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
+    assert again.panels == first
+    again.keep()
+    until(qtbot, lambda: window.episode_feed.panels() == first)
+
+
+def test_reset_for_one_indication_brings_back_the_shipped_panels_not_those_of_its_kind(qtbot, window):
+    editor = open_panels(window)
+    shipped_panels = editor.panels
+    editor.name.setText("Gas of all")
+    editor.name.editingFinished.emit()
+    editor.keep()
+    until(qtbot, lambda: window.episode_feed.panels().panels[0].title == "Gas of all")
+    again = open_panels(window)
+    again.sets.kept_for.setCurrentIndex(1)
+    again.reset()
+    again.keep()
+    until(qtbot, lambda: window.episode_feed.panels() == shipped_panels)
 
 
 # lists, tables, person

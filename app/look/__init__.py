@@ -1,0 +1,1 @@
+"""Marks drawn by the project, for the style sheet."""
