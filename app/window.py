@@ -21,6 +21,7 @@ from app.keeping import Keeping
 from app.known_strip import KnownStrip
 from app.log_strip import LogStrip
 from app.opened import Opened, is_on_a_screen, let_go
+from app.page_turner import PageTurner
 from app.pages import Pages
 from app.preferences import Preferences
 from app.progress_line import ProgressLine
@@ -29,6 +30,8 @@ from app.session import Changed, SessionModel, What
 from app.shift import Shift, shift_of
 from app.theme import THEMES, Theme, apply_theme
 from app.top_bar import TopBar
+from app.top_line import TopLine
+from app.troubles import Troubles
 from app.ward.moves import label_told_apart
 from app.ward_feed import WardFeed
 from app.ward_view import WardContent
@@ -49,13 +52,12 @@ class MainWindow(QMainWindow):
         self.preferences, self._keep_at = preferences, keep_at
         self.opened: Opened | None = None
         self.doers = Doers(self)
+        self.turner = PageTurner(self)
         self.actions_by_key = make_actions(self, self.doers.of)
         fill_menus(self.menuBar(), self.actions_by_key)
         self.top = TopBar(self.theme)
         self.top.page_chosen.connect(self.show_page)
         self.top.person_wanted.connect(self.actions_by_key["sign_in"].trigger)
-        self._no_corner = QWidget(self)
-        self._no_corner.hide()
         self.progress = ProgressLine(self)
         self.known = KnownStrip(self.theme)
         self._connect_known()
@@ -64,6 +66,7 @@ class MainWindow(QMainWindow):
         self._column = QVBoxLayout(self._middle)
         self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(0)
+        self._top_line = TopLine(self.top, self.menuBar(), self._column)
         self.cover = QStackedWidget()
         """What the window shows, and the page that stands before it while it is locked."""
         self.cover.addWidget(self._middle)
@@ -159,20 +162,8 @@ class MainWindow(QMainWindow):
         self._place_top()
 
     def _place_top(self) -> None:
-        """The top line stands in the menu's row where there is room, else in a row of its own."""
-        if self.model is None:
-            return
-        bar = self.menuBar()
-        # measured by their words: a menu that the bar pushed out has no geometry to ask for
-        words = (action.text().replace("&", "") for action in bar.actions())
-        menus = sum(bar.fontMetrics().horizontalAdvance(word) + self.theme.px(28) for word in words)
-        fits = menus + self.top.sizeHint().width() <= self.width()
-        if fits and bar.cornerWidget() is not self.top:
-            bar.setCornerWidget(self.top)
-        elif not fits and self._column.indexOf(self.top) < 0:
-            bar.setCornerWidget(self._no_corner)
-            self._column.insertWidget(0, self.top)
-        self.top.show()
+        if self.model is not None:
+            self._top_line.place(self.theme, self.width())
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
@@ -194,20 +185,20 @@ class MainWindow(QMainWindow):
     # what is shown
 
     def show_first_page(self) -> None:
-        page.step_wanted.connect(self.doers.store.take_step)
         """The page before any store is open."""
         self._clear_column()
         file_deeds = self.doers.file
-        self.setWindowTitle(self.keeping.title(None))
         page = FirstPage(self.theme, self.preferences.recent_stores, self.preferences.cautions_seen)
         page.sample_wanted.connect(file_deeds.do_sample_shift)
         page.new_wanted.connect(file_deeds.do_new_store)
         page.open_wanted.connect(file_deeds.do_open_store)
         page.file_wanted.connect(file_deeds.do_take_in)
         page.recent_wanted.connect(file_deeds.open_recent)
+        page.step_wanted.connect(self.doers.store.take_step)
         page.cautions_read.connect(self._cautions_read)
         self.first = page
         self._column.addWidget(page)
+        self.setWindowTitle(self.keeping.title(None))
 
     def _cautions_read(self) -> None:
         self.prefer(cautions_seen=True)
@@ -246,8 +237,8 @@ class MainWindow(QMainWindow):
         o.episode_feed.refreshed.connect(self._episode_refreshed)
         o.pages.ward.opened.connect(self.open_episode)
         o.pages.ward.selected.connect(self.select)
-        o.pages.made.connect(self._page_made)
-        o.strip.left.connect(self._focus_page)
+        o.pages.made.connect(self.turner.page_made)
+        o.strip.left.connect(self.turner.focus)
 
     def _connect_known(self) -> None:
         review = self.doers.review
@@ -257,57 +248,9 @@ class MainWindow(QMainWindow):
         self.known.live_wanted.connect(review.do_known_live)
         self.known.later_wanted.connect(review.do_came_later)
 
-    def _page_made(self, name: str) -> None:
-        pages = self._now_open().pages
-        if name == "episode":
-            pages.episode.back.connect(self._to_ward)
-            pages.episode.explain_wanted.connect(self.doers.view.explain)
-            pages.episode.panels_wanted.connect(self.actions_by_key["panels"].trigger)
-        elif name == "handover":
-            pages.handover.save_wanted.connect(self.actions_by_key["save_handover"].trigger)
-            pages.handover.back.connect(self._to_ward)
-        elif name == "compare":
-            pages.compare.back.connect(self._to_ward)
-            pages.compare.opened.connect(self.open_episode)
-        elif name == "map":
-            pages.map.back.connect(self._to_ward)
-            pages.map.explain_wanted.connect(self.doers.view.explain_figure)
-        elif name == "statistics":
-            pages.statistics.back.connect(self._to_ward)
-            pages.statistics.span_wanted.connect(self.doers.review.count_shift)
-            pages.statistics.save_wanted.connect(self.actions_by_key["save_statistics"].trigger)
-
     def show_page(self, name: str) -> None:
         """Show a page and give it the focus."""
-        o = self._now_open()
-        if name in ("episode", "map") and o.model.session.selection is None:
-            self.top.pages.choose(o.pages.name)
-            return
-        o.pages.setCurrentWidget(o.pages.page(name))
-        self.top.pages.choose(name)
-        self._fill_page(name)
-        self._focus_page()
-
-    def _fill_page(self, name: str) -> None:
-        """Give a page what it shows; the ward has it already."""
-        o = self._now_open()
-        if name in ("episode", "map"):
-            o.episode_feed.show_selection()
-        elif name == "handover":
-            self.doers.ward.show_handover_text()
-        elif name == "compare":
-            o.pages.compare.show_ward(o.feed.content(), o.feed.answers)
-        elif name == "statistics":
-            self.doers.review.refresh_statistics()
-
-    def _focus_page(self) -> None:
-        pages = self._now_open().pages
-        focus = {"ward": "lanes", "episode": "stack", "handover": "text", "compare": "list", "map": "map",
-                 "statistics": "table"}  # fmt: skip
-        getattr(pages.page(pages.name), focus[pages.name]).setFocus()
-
-    def _to_ward(self) -> None:
-        self.show_page("ward")
+        self.turner.show(name)
 
     # intents
 
@@ -342,7 +285,7 @@ class MainWindow(QMainWindow):
         self.close_or_open_strip()
         self.doers.review.count_later()
         if o.pages.name in ("handover", "statistics"):
-            self._fill_page(o.pages.name)
+            self.turner.fill(o.pages.name)
 
     def close_or_open_strip(self) -> None:
         """The strip takes a line only where it can be recorded, and says why where not."""
@@ -367,8 +310,13 @@ class MainWindow(QMainWindow):
     def _ward_refreshed(self, content: WardContent) -> None:
         o = self._now_open()
         o.pages.ward.show_ward(content)
-        if o.model.session.selection is None and o.pages.ward.shown_keys():
-            o.model.select(o.pages.ward.shown_keys()[0])
+        chosen = o.model.session.selection
+        gone = chosen is None or (chosen == o.strip.patient and chosen not in o.feed.answers)
+        if gone:  # nobody was chosen yet, or what was begun was taken back
+            first = next(iter(o.pages.ward.shown_keys()), None)
+            if chosen is not None and first is not None:
+                o.strip.say_of(first, o.strip.plain())  # that it was taken back must not go with its patient
+            o.model.select(first)
         else:
             self._selection_changed()
         if o.pages.name == "compare":

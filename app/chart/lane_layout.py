@@ -9,6 +9,9 @@ from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.theme import Theme
 
 _LEAST_CLOCK = 420  # below this many pixels at 100 % the two columns at the right are laid one over the other
+_CLOSE = 40  # least height of a lane at 100 % where the whole ward then stands on the screen at once
+_COMFORT = 54  # least height where it has to be scrolled in any case
+_FOLDED = 84  # least height with the two columns one over the other
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,6 +38,38 @@ class LaneGeometry:
     folded: bool
     start: int
     end: int
+    unit: float
+    """A pixel at 100 %, in pixels."""
+
+    @property
+    def close(self) -> bool:
+        """Lanes stand close: smaller marks and narrower lines, so that nothing lies over anything."""
+        return self.lane < _COMFORT * self.unit
+
+    @property
+    def mark(self) -> float:
+        """Diameter of a gas."""
+        return (13 if self.close else 14) * self.unit
+
+    @property
+    def flag(self) -> float:
+        """Height of a pennant; its top is at `flag_top`."""
+        return (11 if self.close else 16) * self.unit
+
+    @property
+    def flag_top(self) -> float:
+        """Where pennants begin, under the lane's top."""
+        return (1 if self.close else 4) * self.unit
+
+    @property
+    def words(self) -> float:
+        """Top of the words in the lane's foot."""
+        return self.lane - (14.5 if self.close else 19) * self.unit
+
+    @property
+    def line(self) -> float:
+        """Height of a line of words at the lane's ends."""
+        return (17 if self.close else 20) * self.unit
 
     @property
     def right(self) -> float:
@@ -54,7 +89,7 @@ class LaneGeometry:
 
     @property
     def middle(self) -> float:
-        return self.lane * 0.5
+        return self.lane * (0.45 if self.close else 0.5)
 
     @property
     def thickest(self) -> float:
@@ -78,12 +113,25 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
     if folded:
         longest = max([*states, *dues, px(60)])
         state = min(longest + px(56), width * 0.36)
-    head, gap, count = float(px(36)), float(px(6)), max(len(spec.lanes), 1)
-    lane = (height - head) / count - gap
-    least = px(84) if folded else px(54)
-    return LaneGeometry(
-        width, head, round(min(max(lane, least), px(92))), gap, left, state, due, folded, spec.start, spec.end
-    )
+    head, gap, lane = _heights(len(spec.lanes), px(_FOLDED) if folded else 0, theme, height)
+    unit = float(theme.text_scale)
+    return LaneGeometry(width, head, lane, gap, left, state, due, folded, spec.start, spec.end, unit)
+
+
+def _heights(lanes: int, least: int, theme: Theme, height: float) -> tuple[float, float, float]:
+    """Heights of heading, gap and lane. Lanes come close together where the whole ward then stands on the screen;
+    where it has to be scrolled anyway they keep their comfort. `least`: of a lane that needs more; 0 else."""
+    px, count = theme.px, max(lanes, 1)
+    head, gap = float(px(36)), float(px(6))
+    comfort = (height - head) / count - gap
+    wanted = least or px(_COMFORT)
+    if comfort >= wanted:
+        return head, gap, round(min(comfort, px(92)))
+    close_head, close_gap = float(px(28)), float(px(3))
+    close = int((height - close_head) / count - close_gap)
+    if not least and close >= px(_CLOSE):
+        return close_head, close_gap, min(close, wanted - 1)
+    return head, gap, wanted
 
 
 def place_items(lane: Lane, g: LaneGeometry, theme: Theme) -> list[Placed]:
@@ -96,14 +144,14 @@ def place_items(lane: Lane, g: LaneGeometry, theme: Theme) -> list[Placed]:
         x = g.x(item.at)
         if item.kind is LaneKind.GAS:
             gas_row = 1 - gas_row if x < gas_end else 0  # two gases of one time stand one under the other
-            gas_end = x + px(17)
-            row = g.middle + gas_row * px(14)
-            box = _around(x, row, px(20), px(20))
+            gas_end = x + g.mark + px(3)
+            row = g.middle + gas_row * g.mark
+            box = _around(x, row, g.mark + px(6), g.mark + px(6))
         elif item.kind is LaneKind.FLAG:
             x = max(x, flag_end)
             flag_end = x + px(18)
-            row = px(4) + px(8)
-            box = QRectF(x - px(2), px(2), px(18), px(20))
+            row = g.flag_top + g.flag / 2
+            box = QRectF(x - px(2), g.flag_top - px(1), px(18), g.flag + px(2))
         elif item.kind is LaneKind.SETTING:
             row = g.lane - px(12)
             box = _around(x, row, px(14), px(24))

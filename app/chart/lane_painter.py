@@ -127,7 +127,7 @@ class LanePainter:
 
     def _draw_name(self, painter: QPainter, lane: Lane) -> None:
         g, theme = self.g, self.theme
-        pad, line = theme.px(16), theme.px(19)
+        pad, line = theme.px(16), g.line - theme.px(0 if g.close else 1)
         lines = 3 if lane.first_word and g.lane >= 3 * line + theme.px(4) else 2
         y = g.lane / 2 - lines * line / 2
         room = g.left - pad - theme.px(12)
@@ -223,7 +223,7 @@ class LanePainter:
         painter.restore()
 
     def _draw_support_words(self, painter: QPainter, lane: Lane, taken: list[tuple[float, float]]) -> None:
-        top, ink = self.g.lane - self.theme.px(19), QColor(self.theme.colours.ink_quiet)
+        top, ink = self.g.words, QColor(self.theme.colours.ink_quiet)
         painter.setFont(self.theme.font(self.theme.type.caption))
         for piece in lane.support:
             left, end = max(self.g.x(piece.start), self.g.left), self.g.x(piece.end)
@@ -234,10 +234,10 @@ class LanePainter:
         item, theme = placed.item, self.theme
         if item.kind is LaneKind.GAS:
             state = item.state or GasState.UNKNOWN
-            gas_mark(painter, theme, state, item.verdict, placed.x, placed.row, theme.px(14), item.doubtful)
+            gas_mark(painter, theme, state, item.verdict, placed.x, placed.row, self.g.mark, item.doubtful)
         elif item.kind is LaneKind.FLAG and item.tier is not None:
-            foot = placed.box.bottom() - theme.px(2)
-            pennant(painter, theme, item.tier, placed.x, foot, theme.px(16), item.settled)
+            foot = self.g.flag_top + self.g.flag
+            pennant(painter, theme, item.tier, placed.x, foot, self.g.flag, item.settled)
         elif item.kind is LaneKind.WINDOW:
             self._draw_window(painter, placed, taken)
 
@@ -245,7 +245,7 @@ class LanePainter:
         g, theme = self.g, self.theme
         c = theme.colours
         a, b = max(placed.box.left(), g.left), min(placed.box.right(), g.left + g.clock)
-        rail = round(g.lane - theme.px(21)) + 0.5
+        rail = round(g.words - theme.px(1 if g.close else 2)) + 0.5
         pen = solid_pen(c.accent, 1.5)
         pen.setDashPattern([3, 2])
         painter.setPen(pen)
@@ -265,7 +265,7 @@ class LanePainter:
         foot = g.middle + g.thickest / 2 - theme.px(5)  # on the bar: under it a tick would cut its neighbour's word
         painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
         painter.setFont(theme.font(theme.type.caption))
-        left, top = placed.x + theme.px(5), g.lane - theme.px(19)
+        left, top = placed.x + theme.px(5), g.words
         self._words(painter, placed.item.word, self._before_now(placed, left), top, QColor(c.ink_quiet), taken)
 
     def _before_now(self, placed: Placed, left: float) -> float:
@@ -304,7 +304,7 @@ class LanePainter:
 
     def _draw_right(self, painter: QPainter, lane: Lane) -> None:
         g, theme = self.g, self.theme
-        line, pad = theme.px(20), theme.px(16)
+        line, pad = g.line, theme.px(16)
         x = g.left + g.clock + pad
         rows = 4 if g.folded else 2
         y = g.lane / 2 - rows * line / 2

@@ -135,7 +135,7 @@ class LaneWords:
     def _due_word(self, due: DueFigure | None) -> str:
         if due is None:
             return translate("ward", "nothing due")
-        name = due_name(due.what)
+        name = due_name(due.what) if due.what != "probable_break" else translate("ward", "Probable break?")
         if due.state == "awaiting result":
             return translate("ward", "{what}: awaiting result").format(what=name)
         if due.state == "overdue":
@@ -361,7 +361,7 @@ def short_flags(names: list[str]) -> str:
     >>> short_flags(["pH below 7.25", "GCS fallen", "SpO2 above range on oxygen at hypercapnic risk"])
     'pH below 7.25; GCS fallen +1'
     """
-    short = [name.partition(":")[0] for name in names]
+    short = [_brief(name.partition(":")[0]) for name in names]
     told = short[:1]
     for name in short[1:]:
         if len("; ".join((*told, name))) > FLAG_COLUMN:
@@ -369,6 +369,15 @@ def short_flags(names: list[str]) -> str:
         told.append(name)
     more = len(short) - len(told)
     return "; ".join(told) + (f" +{more}" if more else "")
+
+
+def _brief(name: str) -> str:
+    """A name without its last part where the column has no room for it; the flag's sentence says it whole.
+
+    >>> _brief("SpO2 above range on oxygen, hypercapnic risk")
+    'SpO2 above range on oxygen'
+    """
+    return name.rpartition(", ")[0] or name if len(name) > FLAG_COLUMN else name
 
 
 def _latest_gas(f: EpisodeFigures) -> GasFigure | None:

@@ -97,3 +97,20 @@ def test_large_text_leaves_room_for_two_lanes(qtbot, tmp_path):
         qtbot.wait(20)
         assert window.pages.ward.lanes.height() >= window.theme.px(180)
         assert window.strip.said.height() > 0
+
+
+@pytest.mark.parametrize(("scale", "width", "one_line"), [(1.0, 1280, True), (1.0, 1920, True), (1.5, 1920, True),
+                                                          (2.0, 1280, False)])  # fmt: skip
+def test_the_line_on_top_stands_beside_the_menus_where_it_fits(qtbot, tmp_path, scale, width, one_line):
+    preferences = Preferences(text_scale=scale, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(width, 800)
+        settled(qtbot, window)
+        qtbot.wait(20)
+        bar = window.menuBar()
+        assert (bar.cornerWidget() is window.top) is one_line
+        last = bar.actionGeometry(bar.actions()[-1])
+        assert last.right() > 0  # no menu is pushed out
+        if one_line:
+            assert last.right() <= window.top.x()
+            assert window.top.x() + window.top.width() <= width

@@ -5,6 +5,7 @@ from dataclasses import replace
 import pytest
 from PySide6.QtCore import QPoint, Qt
 
+from app.chart.lane_layout import geometry_of
 from app.chart.lane_painter import LanePainter
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LaneItem, LaneKind
@@ -180,3 +181,28 @@ def test_settings_from_before_the_mask_came_off_are_dimmed(qtbot, ward, lanes_sp
     before = ward.grab().toImage()
     ward.set_spec(replace(spec, lanes=(replace(spec.lanes[0], off_mask=True),)))
     assert ward.grab().toImage() != before
+
+
+def crowded(lanes_spec, count=12):
+    lane = lanes_spec.lanes[0]
+    return replace(lanes_spec, lanes=tuple(replace(lane, key=f"e{n}", title=f"Bed {n}") for n in range(count)))
+
+
+@pytest.mark.parametrize("scale", [1.0, 1.25])
+def test_twelve_lanes_stand_on_the_screen_at_once_and_nothing_in_them_collides(lanes_spec, scale):
+    theme = LIGHT.scaled(scale)
+    g = geometry_of(crowded(lanes_spec), theme, 1248 * scale, 550 * scale)
+    assert g.head + g.top(12) - g.gap <= 550 * scale
+    assert g.close
+    top, bottom = g.middle - g.mark / 2, g.middle + g.mark / 2
+    assert g.flag_top + g.flag <= top + 1  # a pennant ends where a gas begins
+    assert g.words >= bottom - theme.px(1)  # letters begin below the top of their line
+    assert 2 * g.line <= g.lane
+
+
+def test_a_ward_that_must_be_scrolled_keeps_its_comfort_and_a_small_one_its_room(lanes_spec):
+    long = geometry_of(crowded(lanes_spec, 20), LIGHT, 1248, 550)
+    assert not long.close
+    assert long.lane == 54
+    few = geometry_of(crowded(lanes_spec, 4), LIGHT, 1248, 550)
+    assert few.lane == 92
