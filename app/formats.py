@@ -21,7 +21,7 @@ ABSENT = "not recorded"
 MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
 """Fixed letters, so that no computer's region turns a day into a month."""
 GAS_UNITS = ("mmHg", "kPa")
-_CHOICES = {"copd": "COPD", "ards": "ARDS"}
+_CHOICES = {"copd": "COPD", "ards": "ARDS", "confusion": "new confusion"}
 _GAS_DECIMALS = {"mmHg": 0, "kPa": 1}
 
 
@@ -150,10 +150,14 @@ def quantity(channel: str, value: float | str | None, gas_unit: str = "mmHg") ->
 
     >>> quantity("ipap", 16.0), quantity("ph", 7.4), quantity("fio2", 0.35), quantity("paco2", 60, "kPa")
     ('16 cmH2O', '7.40', '35 %', '8.0 kPa')
+    >>> quantity("dyspnoea", 8.0), quantity("indication", "copd"), quantity("told", "registrar | busy")
+    ('8 of 10', 'COPD', 'registrar. Answer: busy')
     """
     if value is None or (isinstance(value, float) and isnan(value)):
         return ABSENT
     known = CHANNELS.get(channel)
+    if channel == "told" and isinstance(value, str):
+        return told_words(value)
     if isinstance(value, str) or known is None or known.kind is not Kind.NUMBER:
         return _CHOICES.get(value, value) if isinstance(value, str) else trimmed(value)
     if known.unit == "fraction":
@@ -163,6 +167,25 @@ def quantity(channel: str, value: float | str | None, gas_unit: str = "mmHg") ->
     keeps_zeros = known.group is Group.GAS or channel == "temp"
     text = fixed(value, known.decimals) if keeps_zeros else trimmed(value, known.decimals)
     return with_unit(text, shown_unit(channel))
+
+
+def choice_word(value: str) -> str:
+    """One of a channel's choices as it is read: COPD, new confusion.
+
+    >>> choice_word("ards"), choice_word("alert")
+    ('ARDS', 'alert')
+    """
+    return _CHOICES.get(value, value)
+
+
+def told_words(words: str) -> str:
+    """Who was told and what was answered; a bar parts them where both were typed.
+
+    >>> told_words("registrar | busy, will come"), told_words("registrar")
+    ('registrar. Answer: busy, will come', 'registrar')
+    """
+    who, bar, answer = (part.strip() for part in words.partition("|"))
+    return f"{who}. Answer: {answer}" if bar and answer else who if bar else words
 
 
 def with_unit(text: str, unit: str) -> str:
@@ -181,6 +204,8 @@ def shown_unit(channel: str) -> str:
     ('°C', '', 'L/min')
     """
     unit = CHANNELS[channel].unit
+    if channel == "dyspnoea":
+        return "of 10"
     return {"pH": "", "points": "", "degC": "°C", "fraction": "%"}.get(unit, unit)
 
 

@@ -27,7 +27,7 @@ LINES = (
     ("14:20 rr 28 spo2 91 gcs 14", "at 14:20; 23:50 typed at 00:10 is yesterday"),
     ("20m ago ph 7,28 paco2 8.3 kPa", "decimal comma or point, mmHg or kPa"),
     ("cpap 10 fio2 60%", "CPAP mode"),
-    ("o2_flow 4", "oxygen by flow; FiO2 is not known then"),
+    ("flow 4", "oxygen by flow, L/min; FiO2 is not known then"),
     ("gas sent | mask off | mask on", "events"),
     ("note ... | told ... | handover remark ...", "words to the end of the line"),
 )

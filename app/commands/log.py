@@ -67,7 +67,7 @@ def reading_text(reading: Reading, reader: Reader) -> str:
     """One reading as it will be kept, a gas pressure in the unit it was typed in."""
     channel = reading.channel
     if channel.kind is Kind.MARK:
-        return f"{channel.name}: {reading.words}" if reading.words else channel.name
+        return f"{channel.name}: {quantity(channel.key, reading.words)}" if reading.words else channel.name
     if channel.kind is Kind.INSTANT:
         return f"{channel.name} {wall(int(reading.number or 0), reader.zone)}"
     name = _opening(quantity_name(channel.key))

@@ -27,7 +27,7 @@ _NAMES: Final = {
     "rr": "RR counted",
     "rr_total": "RR device",
     "vte": "Tidal vol.",
-    "mv": "Minute vol.",
+    "mv": "Minute vent.",
 }
 _FROM_GAS: Final = {"pf": "pf_mmHg", "hco3_calculated": "hco3_calculated_mmol_L", "sbe": "sbe_mmol_L"}
 LEAST_GAP: Final = 5 * MINUTE

@@ -226,7 +226,7 @@ class BeginForm(PreviewedForm):
         kind = self.tr("hypercapnic risk") if risk else self.tr("no hypercapnic risk known")
         source = low.source.partition(";")[0]
         self.cells["indication"].tell(f"{kind}; {source}" if self.indication.currentData() else kind)
-        self.cells["ceiling_of_care"].tell(self.tr("How far support goes. Apart from resuscitation."))
+        self.cells["ceiling_of_care"].tell(self.tr("How far support goes. Resuscitation is recorded separately."))
         self.cells["resuscitation"].tell(self.tr("What is done if the heart stops."))
         values = {r.channel.key: r for _, readings in (self.preview.read if self.preview else ()) for r in readings}
         self.readiness.tell_measured(values)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from app.formats import quantity, since
+from app.formats import choice_word, quantity, since
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Cell
 from app.forms.entry_form import EntryForm, worded
@@ -46,7 +46,7 @@ class VitalsForm(EntryForm):
 
     def choice_word(self, choice: str) -> str:
         """A choice in the reader's language."""
-        return self.tr(choice)
+        return self.tr(choice_word(choice))
 
     def items(self) -> str:
         numbers = {key: field.text for key, field in self.fields.items()}

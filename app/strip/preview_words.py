@@ -62,7 +62,8 @@ def reading_words(reading: Reading, reader: Reader) -> str:
     if reading.channel.kind is Kind.INSTANT:
         return f"{name} {reader.time(int(reading.number or 0))}"
     if isinstance(reading.value, str):
-        return f"{name}: {reading.value}" if reading.channel.group is not Group.SETTING else f"{name} {reading.value}"
+        told = quantity(reading.channel.key, reading.value)
+        return f"{name}: {told}" if reading.channel.group is not Group.SETTING else f"{name} {told}"
     if reading.channel.key in _GAS_PRESSURES and reading.raw_unit in ("mmHg", "kPa"):
         raw = reading.raw.replace(",", ".")
         other = "kPa" if reading.raw_unit == "mmHg" else "mmHg"

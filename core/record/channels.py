@@ -125,7 +125,7 @@ _PROFILE = (
     _number("age", "Age", P, u.YEARS, (0, 120), (16, 105)),
     _choice("indication", "Indication", P, *INDICATIONS),
     _words("arrived_at", "Arrived", P, Kind.INSTANT),
-    _words("decided_at", "Decision to support", P, Kind.INSTANT),
+    _words("decided_at", "Decision to start support", P, Kind.INSTANT),
     _words("deciding_gas_at", "Deciding gas", P, Kind.INSTANT),
     _words("started_at", "Support started", P, Kind.INSTANT),
     _words("ended_at", "Support ended", P, Kind.INSTANT),
@@ -159,6 +159,8 @@ _PROFILE = (
     _words("feeding", "Feeding", P),
     _words("isolation", "Isolation", P),
     _words("plan", "Plan", P),
+    _words("agreed_with", "Agreed with", P),
+    _words("breaks_and_night", "Breaks and night", P),
     _words("jobs", "Jobs not done", P),
     _words("handover_remark", "Handover remark", P),
     _words("identifier", "Identifier in other systems", P),
@@ -185,12 +187,12 @@ _VITAL = (
     _number("rr", "Respiratory rate", V, u.PER_MIN, (0, 120), (8, 40), 0, ("resp",)),
     _number("hr", "Heart rate", V, u.PER_MIN, (0, 350), (40, 150), 0, ("pulse",)),
     _number("spo2", "SpO2", V, u.PERCENT, (30, 100), (85, 100), 0, ("sat", "sats")),
-    _number("sbp", "Systolic pressure", V, u.MMHG_BLOOD, (20, 320), (80, 220), 0, ("bp",)),
-    _number("dbp", "Diastolic pressure", V, u.MMHG_BLOOD, (10, 220), (40, 130)),
+    _number("sbp", "Systolic blood pressure", V, u.MMHG_BLOOD, (20, 320), (80, 220), 0, ("bp",)),
+    _number("dbp", "Diastolic blood pressure", V, u.MMHG_BLOOD, (10, 220), (40, 130)),
     _number("gcs", "GCS", V, u.POINTS, (3, 15)),
     _choice("acvpu", "ACVPU", V, "alert", "confusion", "voice", "pain", "unresponsive"),
     _number("temp", "Temperature", V, u.CELSIUS, (25, 45), (34, 40.5), 1),
-    _number("dyspnoea", "Dyspnoea (0-10)", V, u.POINTS, (0, 10)),
+    _number("dyspnoea", "Dyspnoea", V, u.POINTS, (0, 10)),
     _choice("accessory_muscle_use", "Accessory muscle use", V, "none", "mild", "moderate", "marked"),
     _choice("comfort", "Comfort", V, "good", "fair", "poor", "not tolerated"),
 )
@@ -210,10 +212,10 @@ _GAS = (
 
 _DEVICE = (
     _number("vte", "Tidal volume, expired", D, u.ML, (0, 3000), (100, 1500), 0, ("vt",)),
-    _number("mv", "Minute volume", D, u.L_PER_MIN, (0, 80), (2, 30), 1),
+    _number("mv", "Minute ventilation", D, u.L_PER_MIN, (0, 80), (2, 30), 1),
     _number("leak", "Leak", D, u.L_PER_MIN, (0, 300), (0, 120)),
     _number("pip", "Peak pressure", D, u.CMH2O, (0, 80), (4, 40), 1),
-    _number("rr_total", "Rate on the device", D, u.PER_MIN, (0, 120), (8, 45)),
+    _number("rr_total", "Respiratory rate, device", D, u.PER_MIN, (0, 120), (8, 45)),
     _number("spont_percent", "Breaths triggered", D, u.PERCENT, (0, 100)),
 )
 

@@ -21,7 +21,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from math import isnan
 
-from core.record.channels import CHANNELS, MODES, Channel, Kind
+from core.record.channels import CHANNELS, MODES, Channel, Group, Kind
 from core.record.entries import NewEntry, from_reading
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.local_time import latest_wall_time
@@ -96,6 +96,9 @@ def read_line(
     readings = reader.read()
     if typed and now - at > LONG_AGO:
         reader.notes.append(Message("line.long_ago", {"hours": (now - at) / HOUR}))
+    keys = {r.channel.key for r in readings if r.channel.group is Group.GAS}
+    if keys - {"gas_fio2"} and "site" not in keys:
+        reader.notes.append(Message("line.site_assumed"))
     after = _after(before, readings)
     if after.is_bilevel and after.ipap <= after.epap:
         raise refuse("settings.ipap_not_above_epap", ipap=after.ipap, epap=after.epap, accepted="IPAP above EPAP")

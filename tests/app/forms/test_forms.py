@@ -202,7 +202,7 @@ def test_vital_signs_start_empty_with_the_last_beside_them(qtbot, window):
     type_into(qtbot, window, form.fields["rr"], "31")
     qtbot.mouseClick(form.rows["acvpu"].buttons["confusion"], Qt.MouseButton.LeftButton)
     settled(qtbot, window)
-    assert "ACVPU: confusion" in form.plain()
+    assert "ACVPU: new confusion" in form.plain()
     qtbot.keyClick(form, Key.Key_Return)
     until(qtbot, lambda: record(window).number("rr").v[-1] == 31)
     assert record(window).latest_text("acvpu") == "confusion"

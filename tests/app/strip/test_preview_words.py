@@ -72,6 +72,17 @@ def test_an_event_a_choice_and_words():
     assert said("interface nasal").values == ("Interface nasal",)
 
 
+def test_choices_and_calls_are_read_as_they_are_said():
+    assert said("indication copd").values == ("Indication: COPD",)
+    assert said("acvpu confusion dyspnoea 8").values == ("ACVPU: new confusion", "Dyspnoea 8 of 10")
+    assert said("told registrar | busy").values == ("Told: registrar. Answer: busy",)
+
+
+def test_a_gas_without_a_site_says_what_it_is_taken_for():
+    assert "No sample site is named: taken as arterial, unless this gas has one already." in said("ph 7.3").effects
+    assert not any("taken as" in e for e in said("ph 7.3 site venous").effects)
+
+
 def test_unusual_values_are_asked_about():
     words = said("spo2 60")
     assert len(words.questions) == 1

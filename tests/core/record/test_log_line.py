@@ -90,6 +90,13 @@ def test_times_are_read():
     assert read("rr 20").at == NOW
 
 
+def test_a_gas_whose_site_nobody_named_says_that_it_is_taken_as_arterial():
+    assert [n.key for n in read("ph 7.26 paco2 62").notes] == ["line.site_assumed"]
+    assert [n.key for n in read("lactate 2.1").notes] == ["line.site_assumed"]
+    assert read("ph 7.26 paco2 62 site venous").notes == ()
+    assert read("gas_fio2 40").notes == ()  # no sample by itself
+
+
 def test_a_time_long_ago_is_said_aloud():
     assert [n.key for n in read("14:20 rr 20").notes] == ["line.long_ago"]
 
