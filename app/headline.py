@@ -8,9 +8,9 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from app.formats import clock, gas_pressure
+from app.formats import clock, fixed, gas_pressure
 from app.phrases import state_of, translate
-from app.theme import Verdict, state_word, verdict_of, verdict_word
+from app.theme import GasState, Verdict, state_word, verdict_of, verdict_word
 from app.words.verdict_loss import LOST_SINCE, with_loss
 from core.judgement.now import headline_response
 from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
@@ -121,32 +121,43 @@ def ever_acidotic(f: EpisodeFigures) -> bool:
 
 
 def gas_state_word(f: EpisodeFigures, gas: GasFigure) -> str:
-    """The state of a gas; what never was acidotic has not resolved."""
-    if gas.state == "resolved" and not ever_acidotic(f):
-        return translate("headline", "not acidotic")
-    return state_word(state_of(gas.state))
+    """The state of a gas; what never was acidotic has not resolved, and a pH above its limits is no normal one."""
+    if gas.state != "resolved":
+        return state_word(state_of(gas.state))
+    if gas.ph_above is not None:
+        return translate("headline", "not acidotic, pH above {limit}").format(limit=fixed(gas.ph_above, 2))
+    return state_word(state_of(gas.state)) if ever_acidotic(f) else translate("headline", "not acidotic")
 
 
 def response_state_word(f: EpisodeFigures, response: ResponseFigure) -> str:
     """The state of the gas that a headline rests on."""
-    if response.state == "resolved" and not ever_acidotic(f):
-        return translate("headline", "not acidotic")
-    return state_word(state_of(response.state))
+    gas = next((g for g in f.gases if g.at == response.headline_gas_at and g.state == response.state), None)
+    return gas_state_word(f, gas if gas is not None else GasFigure(response.anchor_at, "", state=response.state))
 
 
 def pf_word(f: EpisodeFigures, gas_unit: str) -> str:
-    """The newest P/F where oxygen is what fails, "" elsewhere; mmHg is said nowhere, as the trade does."""
+    """The newest P/F where oxygen is what fails, "" elsewhere."""
     if not f.now.oxygen_failure or f.now.pf_mmHg is None:
         return ""
-    return f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit).removesuffix(' mmHg')}"
+    return f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit)}"
+
+
+def beside_pf(pf: str, state: str) -> str:
+    """The P/F, then the state of the pH by its own name: nothing may let a low P/F read as resolved.
+
+    >>> beside_pf("P/F 273 mmHg", "resolved"), beside_pf("", "resolved")
+    ('P/F 273 mmHg; acidosis resolved', 'resolved')
+    """
+    if not pf:
+        return state
+    of_ph = translate("headline", "acidosis resolved") if state == state_word(GasState.RESOLVED) else state
+    return f"{pf}; {of_ph}"
 
 
 def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str) -> str:
-    """The state in a few words, the oxygen first where it is what fails: P/F 107, not acidotic."""
-    state = gas_state_word(f, gas)
-    if gas.off_support:
-        state = translate("headline", "{state}, last gas off support").format(state=state)
-    return ", ".join(x for x in (pf_word(f, gas_unit), state) if x)
+    """The state in a few words, the oxygen first where it is what fails: P/F 107 mmHg; not acidotic."""
+    state = beside_pf(pf_word(f, gas_unit), gas_state_word(f, gas))
+    return translate("headline", "{state}, last gas off support").format(state=state) if gas.off_support else state
 
 
 def off_mask_word(f: EpisodeFigures, zone: str) -> str:

@@ -21,7 +21,16 @@ from app.figure_rows import RowMaker
 from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, hours, minutes, since, trimmed
-from app.headline import Headline, ever_acidotic, gas_state_word, headline, off_mask_word, pf_word, sign_of
+from app.headline import (
+    Headline,
+    beside_pf,
+    ever_acidotic,
+    gas_state_word,
+    headline,
+    off_mask_word,
+    pf_word,
+    sign_of,
+)
 from app.lever_words import lever_reasons, lever_standing
 from app.phrases import gas_words, state_of, support_now, translate
 from app.signs import Sign
@@ -177,13 +186,13 @@ class _Facts:
         yield Fact(self.theme, self._support(), tuple(self._mask_time()), explanation=self._hours())
 
     def _state(self, gas: GasFigure) -> str:
-        state = gas_state_word(self.f, gas)
+        pf = pf_word(self.f, self.reader.gas_unit)
+        state = beside_pf(pf, gas_state_word(self.f, gas))
         if gas.off_support:
             state = translate("side", "{state}, drawn off support").format(state=state)
-        pf = pf_word(self.f, self.reader.gas_unit)
         if pf and not ever_acidotic(self.f):  # oxygen alone is what failed
-            return translate("side", "Hypoxaemic: {pf}, {state}").format(pf=pf, state=state)
-        return f"{pf}, {state}" if pf else state
+            return translate("side", "Hypoxaemic: {state}").format(state=state)
+        return state
 
     @staticmethod
     def _says_the_same(response: ResponseFigure, told: Headline) -> bool:

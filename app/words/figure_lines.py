@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field, replace
 
 from app import formats
 from app.words import Reader, sentence
@@ -41,14 +41,19 @@ class FigureLines:
     reader: Reader
     ever_acidotic: bool = True
     """Whether there was an acidosis that could have resolved."""
+    above: Mapping[Instant, float] = field(default_factory=dict)
+    """Gases whose pH is above its upper limit, and that limit."""
 
     def of(self, f: EpisodeFigures) -> FigureLines:
         """The same for one episode, whose states depend on what was before."""
         acidotic = f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)
-        return replace(self, ever_acidotic=acidotic)
+        above = {g.at: g.ph_above for g in f.gases if g.ph_above is not None and g.state is not None}
+        return replace(self, ever_acidotic=acidotic, above=above)
 
-    def state(self, state: str) -> str:
-        """The state of a gas; what never was acidotic has not resolved."""
+    def state(self, state: str, at: Instant | None = None) -> str:
+        """The state of a gas of a moment; what never was acidotic has not resolved, nor is all the rest normal."""
+        if state == "resolved" and at is not None and at in self.above:
+            return f"{self.tr('not acidotic, pH above')} {formats.fixed(self.above[at], 2)}"
         return self.tr("not acidotic" if state == "resolved" and not self.ever_acidotic else state)
 
     def tr(self, text: str) -> str:
@@ -145,7 +150,7 @@ class FigureLines:
         """State and doubts of a gas, as words."""
         marks = ((g.off_support, "drawn off support"), (g.consistent is False, "does not agree with itself"),
                  (g.doubt, "doubtful"), (g.corrected, "corrected"), (g.disputed, "disputed"))  # fmt: skip
-        state = [self.state(g.state)] if g.state else []
+        state = [self.state(g.state, g.at)] if g.state else []
         return state + [self.tr(word) for holds, word in marks if holds]
 
     def why(self, name: str, reasons: Reasons, field: str) -> str:
@@ -225,7 +230,7 @@ class FigureLines:
             parts.append(f"P/F {self.pressure(g.delta_pf_mmHg, sign=True)}")
         timing = {"early": self.tr("early"), "late": self.tr("late")}.get(g.timing, "")
         when = f"{self.tr('after')} {formats.minutes(g.minutes)}{', ' + timing if timing else ''}"
-        state = f", {self.tr('gas')} {self.state(g.state)}" if g.state and with_state else ""
+        state = f", {self.tr('gas')} {self.state(g.state, g.at)}" if g.state and with_state else ""
         return f"{', '.join(parts) or self.tr('no difference known')} {when}{state}"
 
     def arms(self, g: JudgedGas) -> str:

@@ -63,12 +63,18 @@ def gas_figure(
         lactate_mmol_L=_number(gas.lactate), fio2=_number(fio2), fio2_from=fio2_from, pf_mmHg=pf,
         aa_gradient_mmHg=aa, consistent=consistent, state=state,
         hypercapnic=None if isnan(gas.paco2) else above(gas.paco2, policy.state.hypercapnia_mmHg),
-        off_support=off, doubt=gas.doubt, corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
+        ph_above=_ph_above(gas, policy), off_support=off, doubt=gas.doubt, corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
         warnings=tuple(warnings), ids=gas.ids, sao2_percent=_number(gas.sao2),
         explanations=_explanations(gas, policy) if consistent is False else (),
         rule_out=specimen.venous_rule_out(gas.paco2, shock=shock) if gas.site == "venous" else None,
         temperature=_temperature(gas, settings, policy) if policy.state.temperature_correction else None,
     )  # fmt: skip
+
+
+def _ph_above(gas: GasSample, policy: Policy) -> float | None:
+    """The upper limit of pH that an arterial or capillary gas is above. Not acidotic is not yet normal."""
+    limit = policy.state.alkalotic_above_ph.value
+    return limit if gas.site in STANDS_FOR_ARTERIAL and gas.ph > limit else None
 
 
 def is_off_support(at: Instant, support: SupportTime, policy: Policy) -> bool:

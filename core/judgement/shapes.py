@@ -70,6 +70,8 @@ class GasFigure:
     state: str | None = None
     """"severe", "acidotic" or "resolved"; None where pH or site do not allow it."""
     hypercapnic: bool | None = None
+    ph_above: float | None = None
+    """The upper limit of pH where this one is above it, e.g. 7.45; None elsewhere."""
     off_support: bool = False
     doubt: bool = False
     corrected: bool = False

@@ -4,8 +4,18 @@ from dataclasses import replace
 
 import pytest
 
-from app.headline import Headline, gas_state_word, headline, off_mask_word, sign_of, state_now
+from app.headline import (
+    Headline,
+    gas_state_word,
+    headline,
+    off_mask_word,
+    response_state_word,
+    sign_of,
+    state_now,
+)
 from app.theme import Verdict
+from app.words import Reader
+from app.words.figure_lines import FigureLines
 from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, NowFigure, ResponseFigure, SupportFigure
 from tests.support.sample_ward import sample_ward
 
@@ -71,10 +81,26 @@ def test_what_never_was_acidotic_has_not_resolved() -> None:
 
 def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
     f = bed("Bay A 1")
-    assert state_now(f, f.gases[-1], "mmHg") == "P/F 107, not acidotic"
-    assert state_now(f, f.gases[-1], "kPa") == "P/F 14.3 kPa, not acidotic"
+    assert state_now(f, f.gases[-1], "mmHg") == "P/F 107 mmHg; not acidotic"
+    assert state_now(f, f.gases[-1], "kPa") == "P/F 14.3 kPa; not acidotic"
     off = replace(f.gases[-1], off_support=True, state="acidotic")
-    assert state_now(f, off, "mmHg") == "P/F 107, acidotic, last gas off support"
+    assert state_now(f, off, "mmHg") == "P/F 107 mmHg; acidotic, last gas off support"
+
+
+def test_a_low_pf_never_reads_as_resolved() -> None:
+    gas = GasFigure(5, "arterial", ph=7.38, state="resolved", pf_mmHg=273.0)
+    now = NowFigure(ever_acidotic=True, oxygen_failure=True, pf_mmHg=273.0)
+    assert state_now(EpisodeFigures("E", 9, gases=(gas,), now=now), gas, "mmHg") == "P/F 273 mmHg; acidosis resolved"
+
+
+def test_a_ph_above_its_limits_is_no_normal_one() -> None:
+    gas = GasFigure(5, "arterial", ph=7.49, state="resolved", ph_above=7.45)
+    for once in (True, False):
+        f = EpisodeFigures("E", 9, gases=(gas,), now=NowFigure(ever_acidotic=once))
+        assert gas_state_word(f, gas) == "not acidotic, pH above 7.45"
+        assert FigureLines(Reader()).of(f).gas_marks(gas)[0] == "not acidotic, pH above 7.45"
+        told = ResponseFigure(1, "start", 1, headline="better", headline_gas_at=5, state="resolved")
+        assert response_state_word(f, told) == "not acidotic, pH above 7.45"
 
 
 def test_the_mask_off_and_when() -> None:

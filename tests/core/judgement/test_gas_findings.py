@@ -33,6 +33,16 @@ def test_the_state_follows_the_ph_as_reported(gas, state):
 
 
 @pytest.mark.parametrize(
+    ("gas", "above"),
+    [("ph 7.45 paco2 40", None), ("ph 7.451 paco2 40", 7.45), ("ph 7.52 paco2 30 site venous", None)],
+)
+def test_a_ph_above_its_upper_limit_is_marked_while_the_state_stays(gas, above):
+    (figure,) = gases(START + f"02:00 {gas}")
+    assert figure.ph_above == above
+    assert figure.state == (None if "venous" in gas else "resolved")
+
+
+@pytest.mark.parametrize(
     ("paco2", "hypercapnic"),
     [("45", False), ("45.2", False), ("46", True), ("6.0 kPa", False), ("6.1 kPa", True)],
 )
