@@ -10,7 +10,7 @@ from pathlib import Path
 from core.record.message import Message
 from storage import keys, opening
 from storage.engine import PAGE_BYTES, Database, driver_errors, raw_connection
-from storage.errors import store_error, translated
+from storage.errors import os_failure, store_error, translated
 from storage.verify import findings
 
 
@@ -30,14 +30,13 @@ def backup(store: Path, key: bytes | None, target: Path) -> None:
         if key is not None:
             keys.write_envelope(keys.envelope_path(target), keys.read_envelope(keys.envelope_path(store)))
         os.replace(unfinished, target)
-        _sync(target.parent)
+        keys.sync_folder(target.parent)
     except driver_errors() as error:
         raise translated(error, target) from error
     except OSError as error:
-        raise store_error("store.backup_failed", path=target.name, detail=error.strerror or "") from error
+        raise os_failure(error, "store.backup_failed", target) from error
     finally:
-        unfinished.unlink(missing_ok=True)
-        unfinished.with_name(unfinished.name + "-journal").unlink(missing_ok=True)
+        opening.remove(unfinished)
         if not target.exists():
             keys.envelope_path(target).unlink(missing_ok=True)
 
@@ -49,10 +48,10 @@ def _check_free(target: Path) -> None:
         raise store_error("store.no_folder", path=str(target.parent))
 
 
-def _copy_in_one_step(store: Path, key: bytes | None, target: Path) -> None:
+def _copy_in_one_step(store: Path, key: bytes | None, target: Path, mode: str = "rw") -> None:
     target.touch(mode=0o600)  # for its owner's eyes alone
     with (
-        closing(raw_connection(store, key)) as live,
+        closing(raw_connection(store, key, mode=mode)) as live,
         closing(raw_connection(target, key, mode="rwc")) as copy,
     ):
         live.backup(copy, pages=-1)
@@ -67,11 +66,8 @@ def _check_opens(path: Path, key: bytes | None) -> None:
 
 
 def _sync(path: Path) -> None:
-    """Ask the disk to keep it. Windows cannot sync a folder and does not need to."""
-    folder = path.is_dir()
-    if folder and os.name == "nt":
-        return
-    descriptor = os.open(path, os.O_RDONLY if folder else os.O_RDWR)
+    """Ask the disk to keep it."""
+    descriptor = os.open(path, os.O_RDWR)
     try:
         os.fsync(descriptor)
     finally:
@@ -96,24 +92,40 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
         _check_whole_pages(source)
     unfinished = new.with_name(new.name + ".unfinished")
     try:
-        unfinished.touch(mode=0o600)
-        shutil.copyfile(source, unfinished)
-        if not encrypted:
-            _check_sound(unfinished, None)
-        elif passphrase is not None:
-            _check_sound(unfinished, opening.data_key(source, passphrase))
+        key = opening.data_key(source, passphrase) if encrypted and passphrase is not None else None
+        _copy(source, unfinished, key, closed=encrypted and key is None)
+        if key is not None or not encrypted:
+            _check_sound(unfinished, key)
         _sync(unfinished)
         if encrypted:
             keys.write_envelope(keys.envelope_path(new), keys.read_envelope(keys.envelope_path(source)))
         os.replace(unfinished, new)
-        _sync(new.parent)
+        keys.sync_folder(new.parent)
         return Message("restore.not_checked", {"path": source.name}) if encrypted and passphrase is None else None
+    except driver_errors() as error:
+        raise translated(error, source) from error
     except OSError as error:
-        raise store_error("store.restore_failed", path=new.name, detail=error.strerror or "") from error
+        raise os_failure(error, "store.restore_failed", new) from error
     finally:
-        unfinished.unlink(missing_ok=True)
+        opening.remove(unfinished)
         if not new.exists():
             keys.envelope_path(new).unlink(missing_ok=True)
+
+
+def _copy(source: Path, target: Path, key: bytes | None, *, closed: bool) -> None:
+    """A copy of a backup. A store that was copied with its journal holds its newest entries there: they come along.
+
+    Raises:
+        StoreError: `store.needs_passphrase` where a journal could only be read with it.
+    """
+    journal = source.with_name(source.name + "-wal")
+    if not journal.is_file() or not journal.stat().st_size:
+        target.touch(mode=0o600)
+        shutil.copyfile(source, target)
+    elif closed:
+        raise store_error("store.needs_passphrase", path=source.name)
+    else:
+        _copy_in_one_step(source, key, target, mode="ro")
 
 
 _DAMAGE = (

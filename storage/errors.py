@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import errno
 import sqlite3
 from pathlib import Path
 
@@ -43,9 +44,16 @@ def translated(error: BaseException, path: Path) -> StoreError:
     """A driver's error as a message. A page that fails its check is damage, whatever the driver calls it."""
     words = str(error).lower()
     key = next((key for part, key in _BY_WORDS if part in words), "store.failed")
-    if key == "store.disk_error" and not path.exists():
+    if key in ("store.disk_error", "store.cannot_open") and not path.exists():
         key = "store.file_gone"
     return store_error(key, path=path.name, detail=str(error).splitlines()[0][:200])
+
+
+def os_failure(error: OSError, key: str, path: Path) -> StoreError:
+    """A failure of the disk or folder as a message: `store.disk_full` where there is no room, else under `key`."""
+    if error.errno in (errno.ENOSPC, errno.EDQUOT, errno.EFBIG):
+        return store_error("store.disk_full", path=path.name)
+    return store_error(key, path=path.name, detail=error.strerror or "")
 
 
 DRIVER_ERRORS: tuple[type[BaseException], ...] = (sqlite3.Error, UnicodeDecodeError)

@@ -21,7 +21,7 @@ from pathlib import Path
 from typing import Any
 
 from core.record.message import refuse
-from storage.errors import StoreError, store_error
+from storage.errors import StoreError, os_failure, store_error
 
 KEY_BYTES = 32
 MIN_PASSPHRASE = 8
@@ -159,14 +159,35 @@ def read_envelope(path: Path) -> str:
 
 
 def write_envelope(path: Path, text: str) -> None:
-    """Write the envelope so that either the old or the new one is there, whole, whatever happens."""
+    """Write the envelope so that either the old or the new one is there, whole, whatever happens.
+
+    Raises:
+        StoreError: `store.disk_full`, `key.unwritable`; the old one stays.
+    """
     temporary = path.with_name(path.name + ".new")
-    descriptor = os.open(temporary, os.O_WRONLY | os.O_CREAT | os.O_TRUNC, 0o600)
-    with os.fdopen(descriptor, "w", encoding="ascii") as file:
-        file.write(text)
-        file.flush()
-        os.fsync(file.fileno())
-    os.replace(temporary, path)
+    try:
+        descriptor = os.open(temporary, os.O_WRONLY | os.O_CREAT | os.O_TRUNC, 0o600)
+        with os.fdopen(descriptor, "w", encoding="ascii") as file:
+            file.write(text)
+            file.flush()
+            os.fsync(file.fileno())
+        os.replace(temporary, path)
+        sync_folder(path.parent)  # a store whose key file a power cut takes away is lost whole
+    except OSError as error:
+        raise os_failure(error, "key.unwritable", path) from error
+    finally:
+        temporary.unlink(missing_ok=True)
+
+
+def sync_folder(folder: Path) -> None:
+    """Ask the disk to keep the names in a folder. Windows cannot and need not."""
+    if os.name == "nt":
+        return
+    descriptor = os.open(folder, os.O_RDONLY)
+    try:
+        os.fsync(descriptor)
+    finally:
+        os.close(descriptor)
 
 
 def _normal(secret: str) -> bytes:
@@ -254,7 +275,10 @@ def _read(text: str) -> dict[str, Any]:
 
 
 def _check_shape(envelope: dict[str, Any]) -> None:
-    """Costs out of bounds are refused before they are paid."""
+    """Costs out of bounds, or more wraps than there are kinds, are refused before they are paid."""
+    kinds = [wrap["kind"] for wrap in envelope["wraps"]]
+    if not kinds or len(set(kinds)) != len(kinds) or not set(kinds) <= {PASSPHRASE, RECOVERY}:
+        raise ValueError("kinds")
     for wrap in envelope["wraps"]:
         cost = Cost(wrap["memory_kib"], wrap["passes"], wrap["lanes"])
         within = all(type(c) is int and 1 <= c <= m for c, m in zip(_costs(cost), _costs(_MOST), strict=True))

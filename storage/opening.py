@@ -80,7 +80,11 @@ def _make(path: Path, key: bytes | None, envelope: str, facts: dict[str, str]) -
 
 def remove(path: Path) -> None:
     """Remove a store that could not be finished, with all that lies beside it."""
-    for made in (path, keys.envelope_path(path), *(path.with_name(path.name + end) for end in ("-wal", "-shm"))):
+    for made in (
+        path,
+        keys.envelope_path(path),
+        *(path.with_name(path.name + end) for end in ("-wal", "-shm", "-journal")),
+    ):
         made.unlink(missing_ok=True)
 
 

@@ -52,6 +52,7 @@ TEMPLATES: Final[dict[str, str]] = {
         "page is damaged. Nothing was changed. Try the key file of another backup.",
     "key.envelope_newer": "The key file is of format {format}, newer than this program reads. "
         "Update the program.",
+    "key.unwritable": "The key file {path} could not be written: {detail}. The one before still holds.",
     "key.wrong_passphrase": "The passphrase is wrong. The recovery code is accepted too.",
     "replay.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "replay.worker_lost": "A process of the replay ended by itself: perhaps the computer ran out of memory. "
@@ -74,7 +75,9 @@ TEMPLATES: Final[dict[str, str]] = {
         "that ends.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",
     "store.damaged":
-        "[[{path}]][[!path|The store]] is damaged: part of the file is not what was written ({detail}). Restore the "
+        "[[{path}]][[!path|The store]] is damaged: part of the file is not what was written ({detail:pick "
+        "file is not a database=its pages fail their check;database disk image is malformed=its pages do not fit "
+        "together}). Restore the "
         "newest backup into a new store, or save what can be read.[[ {first:pick page=It is the first page that "
         "fails: if the rest is whole, the key file beside it may be that of another store.}]]",
     "restore.not_checked": "{path} is encrypted and no passphrase was given: its key file is whole and its length is "

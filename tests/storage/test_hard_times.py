@@ -10,10 +10,13 @@ import pytest
 
 from core.record.entries import NewEntry
 from storage.keys import Cost
+from storage.opening import data_key
 from storage.store import Store, StoreError
 from tests.storage.conftest import NOW
+from tests.support import bad_stores
 from tests.support.ended_early import acknowledged, assert_all_there, kill_while_logging, start
-from tests.support.flips import SECRET, filled, mutated, outcomes, read_all
+from tests.support.flips import SECRET, changed_by_flips, filled, missed_by_pages, outcomes, small
+from tests.support.mutations import fuzz
 
 posix = pytest.mark.skipif(sys.platform == "win32", reason="ends and limits programs as POSIX does")
 
@@ -71,25 +74,36 @@ def test_a_file_removed_under_the_program_is_said(tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize("encrypted", [False, True])
-def test_mutated_stores_open_or_are_refused(tmp_path: Path, encrypted: bool) -> None:
-    chance = random.Random(23)
-    sound = filled(tmp_path / "ward.luff", encrypted=encrypted).read_bytes()
-    keys: set[str] = set()
-    for _ in range(40):
-        (tmp_path / "ward.luff").write_bytes(mutated(sound, chance))
-        try:
-            with Store.open(tmp_path / "ward.luff", passphrase=SECRET) as store:
-                store.verify()
-                read_all(store)
-        except StoreError as error:  # any other error fails the test
-            keys.add(error.message.key)
-        for end in ("-wal", "-shm"):
-            (tmp_path / f"ward.luff{end}").unlink(missing_ok=True)
-    assert "store.damaged" in keys
-    assert keys <= TOLD
+def test_changed_bytes_never_change_a_value_in_silence(tmp_path: Path, encrypted: bool) -> None:
+    """The long form in tests/soak flips every byte."""
+    path = small(tmp_path / "ward.luff", encrypted=encrypted)
+    places = random.Random(6).sample(range(path.stat().st_size), 150)
+    if encrypted:
+        assert missed_by_pages(path, data_key(path, SECRET) or b"", places) == []
+    else:
+        assert changed_by_flips(path, places).keys() <= {"unchanged", "refused", "found", "same"}
 
 
-TOLD = {
-    "store.damaged", "store.damaged_chunk", "store.not_a_store", "store.disk_error", "store.cannot_open",
-    "store.failed", "document.damaged", "key.envelope_missing",
-}  # fmt: skip
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_bad_stores_open_or_are_refused(tmp_path: Path, encrypted: bool) -> None:
+    tally = fuzz(40, 23, bad_stores.opening(tmp_path, encrypted=encrypted))
+    assert tally.counts["refused"] > 10
+    assert tally.slowest < 20
+
+
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_bad_backups_restore_whole_or_not_at_all(tmp_path: Path, encrypted: bool) -> None:
+    tally = fuzz(20, 29, bad_stores.restoring(tmp_path, encrypted=encrypted))
+    assert tally.counts["refused"] > 5
+
+
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_bad_stores_are_salvaged_without_making_anything_up(tmp_path: Path, encrypted: bool) -> None:
+    tally = fuzz(15, 31, bad_stores.salvaging(tmp_path, encrypted=encrypted))
+    assert tally.counts["saved"] > 5
+
+
+def test_a_bad_key_file_is_refused_and_costs_no_time(tmp_path: Path) -> None:
+    tally = fuzz(40, 37, bad_stores.opening(tmp_path, encrypted=True, key_too=True))
+    assert tally.counts["refused"] > 10
+    assert tally.slowest < 20

@@ -113,12 +113,6 @@ def test_a_few_hundred_mutated_files(tmp_path: Path, store: Store, seed: int) ->
     assert all(count > 5 for count in refused.values()), "the mutations bite"
 
 
-@pytest.mark.soak
-@pytest.mark.timeout(0)
-def test_a_hundred_thousand_mutated_files(tmp_path: Path, store: Store) -> None:
-    fuzz(tmp_path, store, 100_000, 3)
-
-
 def test_the_originals_are_taken(tmp_path: Path, store: Store) -> None:
     for name, data in originals(tmp_path).items():
         path = tmp_path / name
