@@ -106,6 +106,11 @@ class CompareView(QWidget):
         items = (self.list.item(n) for n in range(self.list.count()))
         return [i.data(_KEY) for i in items if i.checkState() is Qt.CheckState.Checked]
 
+    def current(self) -> str | None:
+        """The key of the episode that the cursor stands on."""
+        item = self.list.currentItem()
+        return None if item is None else str(item.data(_KEY))
+
     def _changed(self, item: QListWidgetItem) -> None:
         if self._filling:
             return

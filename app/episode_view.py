@@ -250,6 +250,12 @@ class EpisodeView(QWidget):
         near = min(self._on.figures.gases, key=lambda g: abs(g.at - at))
         return near if abs(near.at - at) <= max(2 * MINUTE, (end - start) // 100) else None
 
+    def response_pointed_at(self) -> ResponseFigure | None:
+        """The response whose window the crosshair stands in."""
+        at = self.stack.instant
+        bracket = self.stack.bracket_at(at) if at is not None else None
+        return bracket.payload if bracket is not None and isinstance(bracket.payload, ResponseFigure) else None
+
     # what the person does
 
     def keyPressEvent(self, event: QKeyEvent) -> None:

@@ -20,6 +20,7 @@ from PySide6.QtWidgets import (
 
 from app.chart.acid_base_map import AcidBaseMap
 from app.chart.shapes import MapGas, MapSpec
+from app.copying import can_be_copied
 from app.episode_shown import EpisodeOnScreen
 from app.map_words import class_words, map_spec, map_table, response_words, steps_of, titled_spec
 from app.phrases import gas_name, gas_words
@@ -52,6 +53,7 @@ class MapView(QWidget):
         self.told.setWordWrap(True)
         self.told.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
         self.table = QTableWidget(0, len(_SHOWN))
+        can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Gases of the map"))
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)

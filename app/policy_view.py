@@ -4,9 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import QSize, Qt, Signal
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
-    QDialog,
     QFrame,
     QHBoxLayout,
     QHeaderView,
@@ -19,6 +18,8 @@ from PySide6.QtWidgets import (
 )
 
 from app.choice_row import ChoiceRow
+from app.copying import can_be_copied
+from app.fitted import FittedDialog, fit
 from app.formats import wall
 from app.operations.policy import PolicyInForce
 from app.policy_words import Rule, rules
@@ -31,7 +32,7 @@ _WIDTHS = (286, 84, 256, 180, 148)
 """Pixels of the columns at the smallest text: rule, strength, limits, for whom, how sure; then source."""
 
 
-class PolicyDialog(QDialog):
+class PolicyDialog(FittedDialog):
     """Shows one policy. It changes nothing itself: a file is looked at first, by whoever listens."""
 
     file_wanted = Signal()
@@ -64,11 +65,11 @@ class PolicyDialog(QDialog):
         self.save.clicked.connect(self.save_wanted)
         self.close_it.clicked.connect(self.close)
         self.show_policy(found, reader)
-        room = parent.size() if parent is not None else QSize(1280, 800)
-        self.resize(min(theme.px(1640), room.width() - 20), min(theme.px(960), room.height() - 80))
+        fit(self, theme, 1640, 960)
 
     def _made_tree(self) -> QTreeWidget:
         tree = QTreeWidget()
+        can_be_copied(tree)
         tree.setAccessibleName(self.tr("Rules"))
         tree.setHeaderLabels([self.tr("Rule"), self.tr("Strength"), self.tr("Limits"), self.tr("For whom"),
                               self.tr("How sure"), self.tr("Source")])  # fmt: skip

@@ -23,10 +23,13 @@ from PySide6.QtWidgets import (
 )
 
 from app.choice_row import ChoiceRow
+from app.copying import can_be_copied
+from app.explain import Explanation
 from app.formats import span as span_words
 from app.phrases import translate
 from app.statistics.bars import StatisticsBars
-from app.statistics.measures import as_text, measures
+from app.statistics.explained import explain_measure
+from app.statistics.measures import Measure, as_text, measures
 from app.tables import Table
 from app.theme import Theme
 from app.words import Reader
@@ -64,6 +67,7 @@ class StatisticsView(QWidget):
         for button in (self.count, self.save):
             button.setProperty("role", "small")
         self.table = QTableWidget(0, 3)
+        can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Shift figures"))
         self.table.setHorizontalHeaderLabels([self.tr("Figure"), self.tr("Value"), self.tr("Beside it")])
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
@@ -73,6 +77,7 @@ class StatisticsView(QWidget):
         self.table.setWordWrap(False)
         self.table.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        self._measures: dict[int, Measure] = {}
         self.bars = StatisticsBars(theme)
         self._lay_out()
         self.spans.chosen.connect(self._span_chosen)
@@ -152,8 +157,16 @@ class StatisticsView(QWidget):
                  translate("statistics", "Value"), translate("statistics", "Beside it"))  # fmt: skip
         return Table(translate("statistics", "Shift figures"), heads, rows, as_text(self.found, self._reader))
 
+    def explained(self) -> Explanation | None:
+        """How the figure in the chosen row was counted; None where no row is chosen."""
+        measure = self._measures.get(self.table.currentRow())
+        if measure is None or self.found is None:
+            return None
+        return explain_measure(measure, self.found, self._reader)
+
     def _fill(self) -> None:
         assert self.found is not None
+        self._measures = {}
         rows: list[tuple[str, str, str]] = []
         heads: set[int] = set()
         group = ""
@@ -162,6 +175,7 @@ class StatisticsView(QWidget):
                 group = m.group
                 heads.add(len(rows))
                 rows.append((group, "", ""))
+            self._measures[len(rows)] = m
             rows.append((m.name, m.shown, m.note or m.source))
         self.table.clearSpans()
         self.table.setRowCount(len(rows))

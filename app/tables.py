@@ -5,9 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-import numpy as np
-
-from app.chart.shapes import LanesSpec, Look, StackSpec, Trace
+from app.chart.shapes import LanesSpec
 from app.compare.courses import Comparison, words_of
 from app.formats import fixed, wall
 from app.phrases import translate
@@ -15,8 +13,6 @@ from app.ward_view import WardContent
 
 if TYPE_CHECKING:
     from app.window import MainWindow
-
-MOST_ROWS = 5000
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,60 +60,6 @@ def table_of_lanes(spec: LanesSpec, content: WardContent) -> Table:
     return Table(title, heads, rows, "\n".join(lane.sentence for lane in spec.lanes))
 
 
-def table_of_stack(spec: StackSpec) -> Table:
-    """An episode's panels as a table: a row for each value, by time."""
-    heads = (
-        translate("tables", "When"),
-        translate("tables", "What"),
-        translate("tables", "Value"),
-        translate("tables", "Unit"),
-        translate("tables", "Panel"),
-        translate("tables", "Marks"),
-    )
-    found: list[tuple[int, tuple[str, ...]]] = []
-    for panel in spec.panels:
-        for trace in panel.traces:
-            found += _rows(trace, panel.title, str(spec.zone))
-    found += [
-        (tick.at, (wall(tick.at, str(spec.zone)), tick.word, "", "", translate("tables", "Event"), ""))
-        for tick in spec.events
-    ]
-    if spec.ribbon is not None:
-        found += [
-            (t.at, (wall(t.at, str(spec.zone)), t.word, "", "", spec.ribbon.title, "")) for t in spec.ribbon.ticks
-        ]
-    found.sort(key=lambda row: row[0])
-    return Table(spec.name, heads, tuple(row for _, row in found[-MOST_ROWS:]), spec.summary)
-
-
-def _rows(trace: Trace, panel: str, zone: str) -> list[tuple[int, tuple[str, ...]]]:
-    words = {
-        Look.DOUBTFUL: translate("tables", "doubtful"),
-        Look.CORRECTED: translate("tables", "corrected"),
-        Look.DISPUTED: translate("tables", "disputed"),
-        Look.CARRIED: translate("tables", "carried forward"),
-    }
-    made: list[tuple[int, tuple[str, ...]]] = []
-    for n in np.flatnonzero(np.isfinite(trace.v)):
-        at = int(trace.t[n])
-        marks = [words[Look(trace.looks[n])]] if trace.looks is not None and Look(trace.looks[n]) in words else []
-        marks += [span.word for span in trace.doubts if span.start <= at < span.end]
-        made.append(
-            (
-                at,
-                (
-                    wall(at, zone),
-                    trace.name,
-                    fixed(float(trace.v[n]), trace.decimals),
-                    trace.unit,
-                    panel,
-                    ", ".join(marks),
-                ),
-            )
-        )
-    return made
-
-
 def table_of_comparison(comparison: Comparison) -> Table:
     """A comparison as a table: a row for each value."""
     heads = (
@@ -151,7 +93,9 @@ def table_of_page(window: MainWindow) -> Table | None:
     if pages.name == "ward" and pages.ward.lanes.spec is not None:
         return table_of_lanes(pages.ward.lanes.spec, feed.content())
     if pages.name == "episode" and pages.episode.stack.spec is not None:
-        return table_of_stack(pages.episode.stack.spec)
+        from app.episode.stack_table import table_of_stack
+
+        return table_of_stack(pages.episode.stack.spec, pages.episode.stack.window)
     if pages.name == "compare" and pages.compare.chart.comparison is not None:
         return table_of_comparison(pages.compare.chart.comparison)
     if pages.name == "map":

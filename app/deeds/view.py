@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtWidgets import QApplication
 
 from app.deeds.doer import Doer
+from app.ward.lane_words import open_flags
 from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, LeverFigure, ResponseFigure
 
 if TYPE_CHECKING:
@@ -25,6 +26,8 @@ class ViewDeeds(Doer):
             self.explain(found)
         elif fact is not None:
             self.window.say(self.tr("This line says all there is to it."))
+        else:
+            self.window.say(self.tr("Nothing is selected here that could be explained."))
 
     def do_show_figures(self) -> None:
         """Every computed figure of the selected episode, unfolded; folded again where it is."""
@@ -52,25 +55,44 @@ class ViewDeeds(Doer):
         return widget
 
     def _of_page(self) -> Explanation | None:
-        if self.pages.name == "episode":
-            pointed = self.pages.episode.gas_pointed_at()
-            if pointed is not None:
-                return self.of_payload(pointed)
-            return next((f.explanation for f in self.pages.episode.side.facts() if f.explanation is not None), None)
-        if self.pages.name == "map":
-            gas = self.pages.map.map.chosen
-            return self.of_payload(gas.payload.gas) if gas is not None else None
+        """What is selected on the page; a page where nothing can be selected explains nothing of another."""
+        found = {
+            "episode": self._of_charts,
+            "map": self._of_map,
+            "ward": self._of_lane,
+            "compare": self._of_compared,
+            "statistics": self.pages.statistics.explained if self.pages.name == "statistics" else None,
+        }.get(self.pages.name)
+        return found() if found is not None else None
+
+    def _of_charts(self) -> Explanation | None:
+        """The gas or the verdict under the crosshair, else the state now."""
+        view = self.pages.episode
+        pointed: object = view.gas_pointed_at() or view.response_pointed_at()
+        if pointed is not None:
+            return self.of_payload(pointed)
+        return next((f.explanation for f in view.side.facts() if f.explanation is not None), None)
+
+    def _of_map(self) -> Explanation | None:
+        gas = self.pages.map.map.chosen
+        return self.of_payload(gas.payload.gas) if gas is not None else None
+
+    def _of_lane(self) -> Explanation | None:
         item = self.pages.ward.lanes.selected_item
         if item is not None:
             return self.of_payload(item.payload)
-        feed, key = self.window.feed, self.pages.ward.lanes.selected_key
-        answer = feed.answers.get(key) if feed is not None else None
+        return self._of_episode(self.pages.ward.lanes.selected_key)
+
+    def _of_compared(self) -> Explanation | None:
+        return self._of_episode(self.pages.compare.current())
+
+    def _of_episode(self, key: str | None) -> Explanation | None:
+        """The strongest flag of an episode, else its newest verdict, else its newest gas."""
+        answer = self.window.feed.answers.get(key or "") if self.window.feed is not None else None
         if answer is None:
             return None
-        figures = answer.figures
-        return self.of_payload(
-            next(iter((*figures.flags, *reversed(figures.responses), *reversed(figures.gases))), None)
-        )
+        f = answer.figures
+        return self.of_payload(next(iter((*open_flags(f), *reversed(f.responses), *reversed(f.gases))), None))
 
     def of_payload(self, payload: object) -> Explanation | None:
         """The explanation of a figure."""

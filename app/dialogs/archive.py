@@ -19,6 +19,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import day
@@ -69,6 +70,7 @@ class ArchiveDialog(AskingDialog):
     def _make_table(self) -> QTableWidget:
         heads = [self.tr("Episode"), self.tr("Ended"), self.tr("May be removed from")]
         table = QTableWidget(0, len(heads))
+        can_be_copied(table)
         table.setAccessibleName(self.tr("Ended episodes"))
         table.setHorizontalHeaderLabels(heads)
         table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)

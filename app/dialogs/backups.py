@@ -18,6 +18,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.backups import BackupKeeper
+from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import wall
@@ -47,6 +48,7 @@ class BackupsDialog(AskingDialog):
         self.go.setText(self.tr("Back up now"))
         self._keeper, self._store, self._reader = keeper, store, reader
         self.told, self.table = QLabel(), QTableWidget(0, 3)
+        can_be_copied(self.table)
         self.told.setWordWrap(True)
         self.told.setTextFormat(Qt.TextFormat.PlainText)
         self._set_table()

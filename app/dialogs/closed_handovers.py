@@ -8,7 +8,6 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
     QAbstractItemView,
-    QDialog,
     QHBoxLayout,
     QHeaderView,
     QLabel,
@@ -19,6 +18,8 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import can_be_copied
+from app.fitted import FittedDialog, fit
 from app.formats import wall
 from app.theme import Theme
 
@@ -26,7 +27,7 @@ if TYPE_CHECKING:
     from storage.documents import DocumentFacts
 
 
-class ClosedHandoversDialog(QDialog):
+class ClosedHandoversDialog(FittedDialog):
     """Lists them, the newest first. `open_wanted` and `copy_wanted` carry a DocumentFacts."""
 
     open_wanted = Signal(object)
@@ -41,6 +42,7 @@ class ClosedHandoversDialog(QDialog):
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         heads = [self.tr("Handover"), self.tr("Closed"), self.tr("By"), self.tr("Ledger"), self.tr("SHA-256")]
         self.table = QTableWidget(len(found), len(heads))
+        can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Closed handovers"))
         self.table.setHorizontalHeaderLabels(heads)
         self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
@@ -77,7 +79,7 @@ class ClosedHandoversDialog(QDialog):
         self.copy_button.clicked.connect(self._copy)
         self.table.itemActivated.connect(self._activated)
         close.clicked.connect(self.close)
-        self.resize(theme.px(900), theme.px(420))
+        fit(self, theme, 900, 420)
 
     def chosen(self) -> DocumentFacts | None:
         """The handover whose row is chosen."""

@@ -17,6 +17,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.chooser import Chooser
+from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import quantity, wall
@@ -74,6 +75,7 @@ class CorrectDialog(AskingDialog):
         self.whom.setProperty("role", "title")
         self.body.addWidget(self.whom)
         self.list = QTreeWidget()
+        can_be_copied(self.list)
         self.act, self.to = Chooser(), Chooser()
         self.value, self.time, self.reason = QLineEdit(), QLineEdit(), QLineEdit()
         self._add_list()

@@ -19,6 +19,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import inert
@@ -61,6 +62,7 @@ class IntakeDialog(AskingDialog):
         self.bar.setTextVisible(False)
         self.bar.setAccessibleName(self.tr("Progress"))
         self.table = QTableWidget(0, 4)
+        can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Rows refused, in doubt, left aside, and what will be recorded"))
         self.table.setHorizontalHeaderLabels(
             [

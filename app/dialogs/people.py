@@ -17,6 +17,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import day
@@ -55,6 +56,7 @@ class PeopleDialog(AskingDialog):
     def _make_table(self) -> QTableWidget:
         heads = [self.tr("Initials"), self.tr("Role"), self.tr("Since"), self.tr("Signs in")]
         table = QTableWidget(0, len(heads))
+        can_be_copied(table)
         table.setAccessibleName(self.tr("People"))
         table.setHorizontalHeaderLabels(heads)
         table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)

@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QGuiApplication, QKeySequence, QShortcut
+from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import (
     QAbstractItemView,
-    QDialog,
     QHBoxLayout,
     QPlainTextEdit,
     QPushButton,
@@ -16,11 +15,13 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import TableCopy
+from app.fitted import FittedDialog, fit
 from app.tables import Table
 from app.theme import Theme
 
 
-class TableDialog(QDialog):
+class TableDialog(FittedDialog):
     """Shows one table. Ctrl+C copies the chosen rows, or all."""
 
     def __init__(self, table: Table, theme: Theme, parent: QWidget | None = None) -> None:
@@ -33,6 +34,7 @@ class TableDialog(QDialog):
         self.table.setHorizontalHeaderLabels(list(table.heads))
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
+        self.copying = TableCopy(self.table)
         self.table.verticalHeader().hide()
         for r, row in enumerate(table.rows):
             for c, text in enumerate(row):
@@ -54,16 +56,10 @@ class TableDialog(QDialog):
         column.addWidget(self.table, 1)
         column.addWidget(self.text)
         column.addLayout(foot)
-        self.copy.clicked.connect(self._copy)
+        self.copy.clicked.connect(self.copying.copy)
         self.copy_words.clicked.connect(self._copy_words)
         close.clicked.connect(self.close)
-        QShortcut(QKeySequence.StandardKey.Copy, self.table, self._copy)
-        self.resize(theme.px(960), theme.px(600))
-
-    def _copy(self) -> None:
-        chosen = sorted({i.row() for i in self.table.selectedIndexes()})
-        rows = tuple(self._table.rows[n] for n in chosen) if len(chosen) > 1 else self._table.rows
-        QGuiApplication.clipboard().setText(Table("", self._table.heads, rows).as_tsv())
+        fit(self, theme, 960, 600)
 
     def _copy_words(self) -> None:
         QGuiApplication.clipboard().setText(self._table.text)

@@ -15,6 +15,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import can_be_copied
 from app.formats import inert
 from app.theme import Theme
 from app.words import Reader, sentence
@@ -45,6 +46,7 @@ class ColumnTable(QTableWidget):
         super().__init__(0, 5, parent)
         self._theme, self._reader = theme, reader
         self._still = NoWheel(self)
+        can_be_copied(self)
         self._channels: list[QComboBox] = []
         self._units: list[QComboBox] = []
         self.setAccessibleName(self.tr("Columns of the table"))

@@ -8,7 +8,6 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
     QComboBox,
-    QDialog,
     QDialogButtonBox,
     QHBoxLayout,
     QLabel,
@@ -19,6 +18,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.failure import Failure
+from app.fitted import FittedDialog, fit
 from app.intake_window.answers_form import AnswersForm
 from app.intake_window.column_table import ColumnTable
 from app.intake_window.preview_table import PreviewTable
@@ -36,7 +36,7 @@ if TYPE_CHECKING:
     from pathlib import Path
 
 
-class MappingDialog(QDialog):
+class MappingDialog(FittedDialog):
     """`ready(ReadRequest)` when every question is answered and the person goes on. Nothing is recorded here."""
 
     ready = Signal(object)
@@ -67,7 +67,7 @@ class MappingDialog(QDialog):
         self.answers.changed.connect(self._answered)
         self.sheet.activated.connect(self._look_again)
         self.kept.activated.connect(self._take_kept)
-        self.resize(theme.px(1240), theme.px(820))
+        fit(self, theme, 1240, 820)
         self._ask()
 
     # layout

@@ -24,14 +24,9 @@ def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[
         e = draft.entry
         what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(e.action, words["new"])
         yield "", f"{what}, {_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
-    spans: dict[tuple[str, str], tuple[int, int, int]] = {}
-    for c in intake.chunks:
-        key, block = (c.episode, c.channel), c.block
-        first, last, count = spans.get(key, (block.t0, block.t1, 0))
-        spans[key] = (min(first, block.t0), max(last, block.t1), count + block.n)
-    for (episode, channel), (first, last, count) in spans.items():
-        when = f"{told.time(first)} - {told.time(last)}"
-        yield "", f"{words['new']}, {_name(channel)}", f"{count:,} {words['samples']}", f"{episode}, {when}"
+    for (episode, channel), span in intake.spans.items():
+        when = f"{told.time(span.first)} - {told.time(span.last)}"
+        yield "", f"{words['new']}, {_name(channel)}", f"{span.count:,} {words['samples']}", f"{episode}, {when}"
 
 
 def _name(channel: str) -> str:

@@ -7,6 +7,7 @@ from dataclasses import replace
 from PySide6.QtWidgets import QAbstractItemView, QTableWidget, QTableWidgetItem, QWidget
 
 from app import formats
+from app.copying import can_be_copied
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
@@ -25,6 +26,7 @@ class PreviewTable(QTableWidget):
         self._reader = replace(reader, near=None)  # a file is of any day: dates are always told
         self.setAccessibleName(self.tr("The first rows as they will be recorded"))
         self.verticalHeader().hide()
+        can_be_copied(self)
         self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
 

@@ -8,7 +8,6 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import (
     QAbstractItemView,
-    QDialog,
     QHBoxLayout,
     QHeaderView,
     QLabel,
@@ -19,7 +18,9 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.copying import can_be_copied
 from app.failure import Failure
+from app.fitted import FittedDialog, fit
 from app.operations import intake as operations
 from app.operations.outcome import Outcome
 from app.session import SessionModel
@@ -33,7 +34,7 @@ if TYPE_CHECKING:
 _KEY = Qt.ItemDataRole.UserRole
 
 
-class TakenDialog(QDialog):
+class TakenDialog(FittedDialog):
     """Withdrawing is asked twice: the first press says what would go, the second does it."""
 
     def __init__(self, model: SessionModel, reader: Reader, theme: Theme, parent: QWidget | None = None) -> None:
@@ -44,6 +45,7 @@ class TakenDialog(QDialog):
         self.setWindowTitle(self.tr("Files taken in"))
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.table = QTableWidget(0, 6)
+        can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Files taken in"))
         heads = (self.tr("Taken"), self.tr("By"), self.tr("File"), self.tr("Entries"), self.tr("Samples"))
         self.table.setHorizontalHeaderLabels([*heads, self.tr("How it was read")])
@@ -73,7 +75,7 @@ class TakenDialog(QDialog):
         close.clicked.connect(self.close)
         self.table.itemSelectionChanged.connect(self._chosen)
         self.go.setEnabled(False)
-        self.resize(theme.px(980), theme.px(480))
+        fit(self, theme, 980, 480)
         model.ask(operations.taken, done=self._show, failed=self._failed)
 
     def _show(self, outcome: Outcome[tuple[TakenSource, ...]]) -> None:
