@@ -159,7 +159,7 @@ class Explainer:
             self._limit("PaCO2", noise.paco2_fraction, fraction(noise.paco2_fraction.value)),
             self._limit("P/F", noise.pao2_fraction, fraction(noise.pao2_fraction.value)),
         )
-        told = translate("explain", "Beyond noise is: {limits}.").format(limits="; ".join(limits))
+        told = translate("explain", "Beyond measurement error is: {limits}.").format(limits="; ".join(limits))
         span = {"start": trimmed(window.window_from_min.value), "end": trimmed(window.window_to_min.value)}
         return rule.format(**span), told
 

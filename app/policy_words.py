@@ -117,7 +117,7 @@ class Rule:
 
 
 SECTIONS: Mapping[str, str] = {
-    "response": "Response to a change", "noise": "Noise between two values", "state": "States of a gas",
+    "response": "Response to a change", "noise": "Measurement error between two values", "state": "States of a gas",
     "oxygen": "Oxygen", "freshness": "How old an input may be", "trend": "Trends", "leak": "Leak", "scores": "Scores",
     "levers": "Levers", "start_clocks": "Clocks of the shift figures",
 }  # fmt: skip

@@ -19,7 +19,8 @@ EVIDENCE: Final[dict[str, str]] = {
         "ward support is the ceiling=telling the responsible clinician, not a higher level of care;"
         "comfort=comfort and telling whom it concerns;else=what was agreed}.",
     "evidence.change": "{quantity:name} {before:q} ({before_at:time}) to {after:q} ({at:time}), {change:q+}"
-        "[[, noise {noise:qn}]].",
+        "[[, {direction:pick up=beyond;down=beyond;else=within} measurement error ({noise:qn})]].",
+    "evidence.unchanged": "{quantity:name} unchanged, {value:q} ({before_at:time} and {at:time}).",
     "evidence.event": "{event:name}[[ {text}]] at {at:time}.",
     "evidence.failed_percent": "In the source {percent:0} % of those with {points:trim} points failed.",
     "evidence.gas_doubt": "The gas of {at:time} {doubt:" + _DOUBT + "}.",

@@ -36,8 +36,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.by_spo2_alone": "The oxygen arm answers by SpO2 alone.",
     "response.compared":
         "{quantity:name} {before:q} to {after:q} ({change:q+}): "
-        "{direction:pick up=up beyond noise;down=down beyond noise;inside noise=inside noise} "
-        "(noise {noise:qn}).",
+        "{direction:pick up=up beyond;down=down beyond;inside noise=within} measurement error ({noise:qn}).",
     "response.confirm_arterially": "Venous pH {ph:2} at {gas_at:time}: confirm arterially.",
     "response.corrected": "{side:pick " + _WHO + "} of {gas_at:time} was corrected.",
     "response.disputed": "{side:pick " + _WHO + "} of {gas_at:time} is disputed: corrected twice.",

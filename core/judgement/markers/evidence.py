@@ -23,6 +23,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
     {
         "evidence.value": ("quantity", "value", "relation", "limit", "limit_kpa", "at", "text"),
         "evidence.change": ("quantity", "before", "before_at", "after", "at", "change", "noise", "direction"),
+        "evidence.unchanged": ("quantity", "value", "before_at", "at"),
         "evidence.timing": ("anchor", "anchor_at", "minutes"),
         "evidence.sustained": ("quantity", "relation", "limit", "minutes", "since", "at", "median"),
         "evidence.twice": ("quantity", "first", "first_at", "second", "second_at", "low", "high"),
@@ -92,10 +93,12 @@ def pressure_is(quantity: str, mmhg: float, relation: str, limit: PressureLimit,
 def changed(
     quantity: str, before: float, before_at: Instant, after: float, at: Instant, noise: float | None = None
 ) -> Message:
-    """A value against an earlier one. `direction`: up, down or inside noise."""
+    """A value against an earlier one. `direction`: up, down or inside noise. One that is the same says only that."""
     change = round(after - before, 6)
+    if change == 0:
+        return Message("evidence.unchanged", {"quantity": quantity, "value": after, "before_at": before_at, "at": at})
     inside = noise is not None and round(abs(change) - noise, 6) <= 0
-    direction = "inside noise" if inside else "up" if change > 0 else "down" if change < 0 else "unchanged"
+    direction = "inside noise" if inside else "up" if change > 0 else "down"
     values: dict[str, Value] = {"quantity": quantity, "before": before, "before_at": before_at, "after": after,
               "at": at, "change": change, "noise": noise, "direction": direction}  # fmt: skip
     return Message("evidence.change", values)

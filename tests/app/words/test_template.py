@@ -7,6 +7,7 @@ import pytest
 
 from app import words
 from app.words import Reader, sentence, template
+from core.judgement.markers.evidence import changed
 from core.record.instant import parse
 from core.record.message import Message
 
@@ -20,9 +21,9 @@ def test_values_are_written_for_the_reader() -> None:
     at = parse("2026-03-28T02:10:00Z")
     message = Message("response.compared", {"quantity": "paco2", "before": 68.0, "after": 60.0, "change": -8.0,
                                             "noise": 5.44, "direction": "down"})  # fmt: skip
-    assert sentence(message) == "PaCO2 68 mmHg to 60 mmHg (−8 mmHg): down beyond noise (noise 5.4 mmHg)."
+    assert sentence(message) == "PaCO2 68 mmHg to 60 mmHg (−8 mmHg): down beyond measurement error (5.4 mmHg)."
     assert sentence(message, Reader(gas_unit="kPa")) == (
-        "PaCO2 9.1 kPa to 8.0 kPa (−1.1 kPa): down beyond noise (noise 0.7 kPa)."
+        "PaCO2 9.1 kPa to 8.0 kPa (−1.1 kPa): down beyond measurement error (0.7 kPa)."
     )
     gained = Message("response.superseded", {"next_at": at})
     assert sentence(gained, Reader(zone="Europe/Madrid")).endswith("28-Mar-2026 03:10.")
@@ -73,3 +74,12 @@ def test_a_ph_is_told_with_the_digits_it_was_reported_in() -> None:
     values = {"quantity": "ph", "value": 7.345, "text": "7.345"}
     assert template.fill("{value:qt}", values, Reader()) == "7.345"
     assert template.fill("{value:qt}", values | {"text": None}, Reader()) == "7.35"
+
+
+def test_a_value_that_is_the_same_says_so_and_no_difference_of_nothing() -> None:
+    before, at = parse("2026-03-28T00:47:00Z"), parse("2026-03-28T02:10:00Z")
+    same = changed("gcs", 13, before, 13, at)
+    assert sentence(same, Reader("UTC")) == "GCS unchanged, 13 (28-Mar-2026 00:47 and 28-Mar-2026 02:10)."
+    small = sentence(changed("ph", 7.24, before, 7.26, at, 0.033), Reader("UTC"))
+    assert small.endswith("+0.02, within measurement error (0.033).")
+    assert "beyond measurement error (0.033)" in sentence(changed("ph", 7.2, before, 7.3, at, 0.033))
