@@ -89,7 +89,8 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
     encrypted = opening.is_encrypted(source)
     if encrypted:
         keys.check_envelope(keys.read_envelope(keys.envelope_path(source)))
-        _check_whole_pages(source)
+        if not _journal_of(source):
+            _check_whole_pages(source)
     unfinished = new.with_name(new.name + ".unfinished")
     try:
         key = opening.data_key(source, passphrase) if encrypted and passphrase is not None else None
@@ -103,7 +104,8 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
         keys.sync_folder(new.parent)
         return Message("restore.not_checked", {"path": source.name}) if encrypted and passphrase is None else None
     except driver_errors() as error:
-        raise translated(error, source) from error
+        told = translated(error, source)
+        raise translated(error, new) if told.message.key == "store.disk_full" else told from error
     except OSError as error:
         raise os_failure(error, "store.restore_failed", new) from error
     finally:
@@ -112,14 +114,19 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
             keys.envelope_path(new).unlink(missing_ok=True)
 
 
+def _journal_of(store: Path) -> int:
+    """The bytes of a journal that lies beside a store: a file that was copied with one is not whole without it."""
+    journal = store.with_name(store.name + "-wal")
+    return journal.stat().st_size if journal.is_file() else 0
+
+
 def _copy(source: Path, target: Path, key: bytes | None, *, closed: bool) -> None:
     """A copy of a backup. A store that was copied with its journal holds its newest entries there: they come along.
 
     Raises:
         StoreError: `store.needs_passphrase` where a journal could only be read with it.
     """
-    journal = source.with_name(source.name + "-wal")
-    if not journal.is_file() or not journal.stat().st_size:
+    if not _journal_of(source):
         target.touch(mode=0o600)
         shutil.copyfile(source, target)
     elif closed:

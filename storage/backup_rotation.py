@@ -91,7 +91,10 @@ def rotate(store: Store, folder: Path, now: Instant) -> Path:
     target = folder / f"{store.path.stem}.{stamp}.luff"
     store.backup(target)
     found = backups_in(folder, store.path)
-    for at in found.keys() - kept(found, now):
-        found[at].unlink(missing_ok=True)
-        envelope_path(found[at]).unlink(missing_ok=True)
+    gone = [found[at] for at in found.keys() - kept(found, now)]
+    beside = backups_in(store.path.parent, store.path)  # made before a migration: kept a year too
+    gone += [path for at, path in beside.items() if now - at > YEAR and path.parent != folder]
+    for path in gone:
+        path.unlink(missing_ok=True)
+        envelope_path(path).unlink(missing_ok=True)
     return target

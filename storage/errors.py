@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import errno
+import shutil
 import sqlite3
 from pathlib import Path
 
@@ -26,6 +27,8 @@ def store_error(key: str, **values: Value) -> StoreError:
     return StoreError(Message(key, values))
 
 
+_NO_ROOM = 100_000
+"""Bytes below which a disk counts as full when it fails."""
 _BY_WORDS = (
     ("database is locked", "store.busy"),
     ("database table is locked", "store.busy"),
@@ -46,7 +49,16 @@ def translated(error: BaseException, path: Path) -> StoreError:
     key = next((key for part, key in _BY_WORDS if part in words), "store.failed")
     if key in ("store.disk_error", "store.cannot_open") and not path.exists():
         key = "store.file_gone"
+    elif key == "store.disk_error" and _is_full(path.parent):
+        key = "store.disk_full"  # the driver tells a full disk so where its shared memory could not grow
     return store_error(key, path=path.name, detail=str(error).splitlines()[0][:200])
+
+
+def _is_full(folder: Path) -> bool:
+    try:
+        return shutil.disk_usage(folder).free < _NO_ROOM
+    except OSError:
+        return False
 
 
 def os_failure(error: OSError, key: str, path: Path) -> StoreError:

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
+from datetime import UTC, datetime
 from pathlib import Path
 from uuid import uuid4
 
@@ -11,8 +12,8 @@ import sqlalchemy as sa
 
 from core.record.message import Message
 from storage import facts_kept, keys, place, schema
-from storage.engine import APPLICATION_ID, BUSY_SECONDS, Database, application_id, make_durable
-from storage.errors import StoreError, store_error
+from storage.engine import APPLICATION_ID, BUSY_SECONDS, Database, application_id, driver_errors, make_durable
+from storage.errors import StoreError, store_error, translated
 from storage.triggers import create_triggers, trigger_findings
 
 _PLAIN_HEADER = b"SQLite format 3\x00"
@@ -72,6 +73,10 @@ def _make(path: Path, key: bytes | None, envelope: str, facts: dict[str, str]) -
         except BaseException:
             database.close()
             raise
+    except driver_errors() as error:
+        failed = translated(error, path)  # told while the file is there
+        remove(path)
+        raise failed from error
     except BaseException:
         remove(path)
         raise
@@ -130,8 +135,9 @@ REVISION = "0001"
 
 
 def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float = BUSY_SECONDS) -> Opened:
-    """Open a store's file. Where the place takes no writing, or its format is newer and still readable, it opens
-    read-only; where another program is writing it opens all the same. Each with its notice.
+    """Open a store's file. One of an older format is backed up beside itself and migrated first. Where the place takes
+    no writing, or its format is newer and still readable, it opens read-only; where another program is writing it opens
+    all the same. Each with its notice.
 
     Raises:
         StoreError: what stands in the way: missing, newer, damaged, no store, locked, a network share.
@@ -145,7 +151,13 @@ def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float 
         notices.append(Message("store.read_only_place", {"path": path.name}))
     database = Database(path, key, mode=_mode(path, read_only or bool(notices)), busy=busy)
     try:
-        facts = check_facts(database)
+        try:
+            facts = check_facts(database)
+        except StoreError as error:
+            if error.message.key != "store.older" or database.read_only:
+                raise
+            database.close()
+            return _migrated(path, passphrase, busy, error)
         newer = newer_notice(facts, path)
         with database.read() as connection:
             wrong = [] if newer else trigger_findings(connection)
@@ -164,6 +176,20 @@ def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float 
         notices.append(Message("store.busy_for_now", {"path": path.name}))
     told = closed if newer or not read_only else []  # who asked to read only need not be told that it is so
     return Opened(database, key, facts, (*notices, *told))
+
+
+def _migrated(path: Path, passphrase: str | None, busy: float, older: StoreError) -> Opened:
+    """A store of an older format, brought up to date and opened; its backup lies beside it and is told of."""
+    from storage.migrate.upgrade import bring_up_to_date
+
+    kept = path.with_name(f"{path.stem}.{datetime.now(UTC):%Y%m%dT%H%M%SZ}.luff")
+    if not bring_up_to_date(path, passphrase, kept):
+        raise older
+    opened = open_store(path, passphrase, read_only=False, busy=busy)
+    told = Message(
+        "store.migrated", {"path": path.name, "format": older.message.values["format"], "backup": kept.name}
+    )
+    return replace(opened, notices=(told, *opened.notices))
 
 
 def _mode(path: Path, read_only: bool) -> str:

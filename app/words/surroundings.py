@@ -93,6 +93,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.file_gone": "{path} is no longer there. Was it moved, or a disk taken out?",
     "store.low_disk": "The disk of {path} is nearly full: {free_mb:0} MB are free, {needed_mb:0} MB are wanted. Make "
         "room before nothing can be recorded.",
+    "store.migrated": "{path} was of the older format {format} and was brought up to date. As it was before it lies beside "
+        "it as {backup}.",
     "store.missing": "There is no store {path}. Take in a file to make one, or name another.",
     "store.needs_passphrase": "{path} is encrypted. Give its passphrase (--passphrase-fd N).",
     "store.network_share": "{path} lies on a network share ({kind}), where locks cannot be relied on. "
@@ -103,7 +105,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.no_folder": "The folder {path} is not there.",
     "store.not_a_store": "{path} is not a store of this program.",
     "store.not_encrypted": "{path} is not encrypted, so it has no passphrase.",
-    "store.older": "{path} is of the older format {format}; this program reads {accepted}. Migrate it first.",
+    "store.older": "{path} is of the older format {format}; this program reads {accepted}. It is brought up "
+        "to date once it is opened where it can be written.",
     "store.read_only": "{path} is open for reading only: nothing can be recorded.",
     "store.read_only_place": "{path} lies where you may not write: it is open for reading only.",
     "store.restore_failed": "The store {path} could not be made from the backup: {detail}.",

@@ -14,35 +14,13 @@ from storage.engine import Database, make_durable
 from storage.migrate import upgrade
 from storage.store import Store, StoreError
 from tests.storage.conftest import NOW, PASSPHRASE
-
-STEP = '''
-"""A step for a test."""
-import sqlalchemy as sa
-from alembic import op
-revision = "0002"
-down_revision = "0001"
-FORMAT = 2
-def upgrade():
-    op.add_column("entry", sa.Column("colour", sa.Text()))
-    {more}
-def downgrade():
-    raise NotImplementedError
-'''
+from tests.support.migration_step import scripts_with_a_step
 
 
 @pytest.fixture
 def scripts(tmp_path: Path) -> Callable[[str], Path]:
     """A folder of migrations with one step more than the shipped ones."""
-
-    def make(more: str = "") -> Path:
-        folder = tmp_path / "scripts"
-        (folder / "versions").mkdir(parents=True)
-        shipped = upgrade.SCRIPTS / "versions" / "0001_baseline.py"
-        (folder / "versions" / shipped.name).write_text(shipped.read_text())
-        (folder / "versions" / "0002_step.py").write_text(STEP.format(more=more))
-        return folder
-
-    return make
+    return lambda more="": scripts_with_a_step(tmp_path / "scripts", more)
 
 
 def _schema(database: Database) -> set[tuple[str, str]]:
