@@ -135,9 +135,9 @@ REVISION = "0001"
 
 
 def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float = BUSY_SECONDS) -> Opened:
-    """Open a store's file. One of an older format is backed up beside itself and migrated first. Where the place takes
-    no writing, or its format is newer and still readable, it opens read-only; where another program is writing it opens
-    all the same. Each with its notice.
+    """Open a store's file. One of an older format is backed up beside itself and migrated first. Where the place
+    takes no writing, or its format is newer and still readable, it opens read-only; where another program is writing
+    it opens all the same. Each with its notice.
 
     Raises:
         StoreError: what stands in the way: missing, newer, damaged, no store, locked, a network share.

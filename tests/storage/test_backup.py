@@ -123,3 +123,42 @@ def test_a_backup_that_says_something_else_is_not_restored(
         Store.restore(tmp_path / "copy.luff", tmp_path / "new.luff", passphrase=secret(store))
     assert caught.value.message.values["detail"] == "verify.chain"
     assert not (tmp_path / "new.luff").exists()
+
+
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_a_store_copied_with_its_journal_restores_with_what_the_journal_holds(
+    make_store: Callable[..., Store], tmp_path: Path, encrypted: bool
+) -> None:
+    store = make_store(encrypted=encrypted)
+    for i in range(3):
+        log(store, i)
+    folder = tmp_path / "copied"
+    folder.mkdir()
+    for end in ("", "-wal", ".key"):
+        if (part := store.path.with_name(store.path.name + end)).exists():
+            (folder / part.name).write_bytes(part.read_bytes())
+    before = {p.name: p.read_bytes() for p in folder.iterdir()}
+    if encrypted:
+        with pytest.raises(StoreError, match=r"store.needs_passphrase"):
+            Store.restore(folder / "ward.luff", tmp_path / "new.luff")
+    Store.restore(folder / "ward.luff", tmp_path / "new.luff", passphrase=secret(store))
+    with Store.open(tmp_path / "new.luff", passphrase=secret(store)) as new:
+        assert new.entries("E1") == store.entries("E1")
+        assert new.verify() == ()
+    assert {n: (folder / n).read_bytes() for n in before} == before
+    assert not list(tmp_path.glob("*unfinished*"))
+
+
+@pytest.mark.parametrize("encrypted", [False, True])
+def test_a_refused_restore_leaves_nothing(make_store: Callable[..., Store], tmp_path: Path, encrypted: bool) -> None:
+    store = make_store(encrypted=encrypted)
+    for i in range(50):
+        log(store, i)
+    store.close()
+    data = bytearray(store.path.read_bytes())
+    data[-5000:-3000] = bytes(2000)
+    store.path.write_bytes(data)
+    before = {p.name for p in tmp_path.iterdir()}
+    with pytest.raises(StoreError):
+        Store.restore(store.path, tmp_path / "new.luff", passphrase=secret(store))
+    assert {p.name for p in tmp_path.iterdir()} == before

@@ -76,6 +76,54 @@ def test_costs_out_of_bounds_are_refused_before_they_are_paid(made: keys.NewKey,
         key_of(json.dumps(envelope), PASSPHRASE)
 
 
+@pytest.mark.parametrize("field", ["kind", "salt", "memory_kib", "passes", "lanes", "nonce", "sealed"])
+def test_no_part_of_a_wrap_can_be_changed(made: keys.NewKey, field: str) -> None:
+    """Each is bound into the seal of the wrap, so that a wrap cannot be weakened, renamed or moved, whatever the
+    checksum says."""
+    envelope = json.loads(made.envelope)
+    wrap = envelope["wraps"][0]
+    changed = {"kind": "recovery", "memory_kib": 128, "passes": 2, "lanes": 2}
+    wrap[field] = changed.get(field, ("1" if wrap[field] != "1" else "2") * len(str(wrap[field])))
+    if field == "kind":
+        envelope["wraps"] = envelope["wraps"][:1]
+    envelope["checksum"] = keys._checksum(envelope)
+    with pytest.raises(StoreError, match=r"key.(wrong_passphrase|envelope_altered)"):
+        key_of(json.dumps(envelope), PASSPHRASE)
+
+
+def test_a_wrap_of_another_store_opens_nothing(made: keys.NewKey) -> None:
+    envelope = json.loads(made.envelope) | {"store_id": "store-2"}
+    envelope["checksum"] = keys._checksum(envelope)
+    with pytest.raises(StoreError, match=r"key.wrong_passphrase"):
+        key_of(json.dumps(envelope), PASSPHRASE)
+
+
+def test_wraps_beyond_their_kinds_are_refused_before_they_are_tried(made: keys.NewKey) -> None:
+    for wraps in ([], "twice", "unknown"):
+        envelope = json.loads(made.envelope)
+        first = envelope["wraps"][0]
+        envelope["wraps"] = {"twice": [first] * 200, "unknown": [{**first, "kind": "other"}]}.get(str(wraps), [])
+        envelope["checksum"] = keys._checksum(envelope)
+        with pytest.raises(StoreError, match=r"key.envelope_altered"):
+            keys.check_envelope(json.dumps(envelope))
+
+
+def test_no_nonce_and_no_salt_is_used_twice(made: keys.NewKey) -> None:
+    texts = [made.envelope]
+    for n in range(6):
+        texts.append(keys.change_passphrase(texts[-1], made.recovery_code, f"another ward {n}", CHEAP))
+    wraps = [w for text in texts for w in json.loads(text)["wraps"] if w["kind"] == keys.PASSPHRASE]
+    for field in ("nonce", "salt", "sealed"):
+        assert len({w[field] for w in wraps}) == len(texts)
+
+
+def test_the_shipped_cost_is_that_of_rfc_9106(make_store: Callable[..., Store]) -> None:
+    """Its second recommended choice, for where 2 GiB are too much: 64 MiB, 3 passes, 4 lanes, a salt of 128 bits."""
+    cost = keys.DEFAULT_COST
+    assert (cost.memory_kib, cost.passes, cost.lanes) == (64 * 1024, 3, 4)
+    assert len(keys.new_recovery_code().replace("-", "")) * 5 == 160
+
+
 @pytest.mark.parametrize("text", ["", "{}", "[]", "null", '{"format": 1}', "[" * 100_000, '{"format": 2}'])
 def test_what_is_no_envelope_is_refused(text: str) -> None:
     with pytest.raises(StoreError, match=r"key.envelope_(altered|newer)"):
