@@ -114,6 +114,8 @@ class Colours:
     wash                    the accent thinned out: selected rows, hovered buttons
     support                 the band of pressure support
     target                  the range a value should be in
+    verdicts, tiers         marks (3:1); one hue for each, light or dark
+    verdict_inks            words of a verdict, in its hue; as readable as any text
     """
 
     ground: str
@@ -131,6 +133,7 @@ class Colours:
     target: str
     channels: tuple[str, ...]
     verdicts: dict[Verdict, str]
+    verdict_inks: dict[Verdict, str]
     tiers: dict[Tier, str]
     on_tier: dict[Tier, str]
 
@@ -158,6 +161,15 @@ LIGHT_COLOURS: Final = Colours(
         Verdict.OVER_CORRECTION: "#332288",
         Verdict.NOT_YET_KNOWN: "#575f68",
         Verdict.NOT_JUDGED: "#82878d",
+    },
+    verdict_inks={
+        Verdict.BETTER: "#0064a0",
+        Verdict.WORSE: "#a34800",
+        Verdict.MIXED: "#882255",
+        Verdict.NO_CLEAR_CHANGE: "#575f68",
+        Verdict.OVER_CORRECTION: "#332288",
+        Verdict.NOT_YET_KNOWN: "#575f68",
+        Verdict.NOT_JUDGED: "#575f68",
     },
     tiers={Tier.REMARK: "#575f68", Tier.CONCERN: "#d55e00", Tier.ESCALATE: "#882255"},
     on_tier={Tier.REMARK: "#ffffff", Tier.CONCERN: "#0b0d0f", Tier.ESCALATE: "#ffffff"},
@@ -187,7 +199,16 @@ DARK_COLOURS: Final = Colours(
         Verdict.NOT_YET_KNOWN: "#a3a9ae",
         Verdict.NOT_JUDGED: "#757d84",
     },
-    tiers={Tier.REMARK: "#a3a9ae", Tier.CONCERN: "#e69f00", Tier.ESCALATE: "#ee6677"},
+    verdict_inks={
+        Verdict.BETTER: "#56b4e9",
+        Verdict.WORSE: "#e69f00",
+        Verdict.MIXED: "#d894bb",
+        Verdict.NO_CLEAR_CHANGE: "#a3a9ae",
+        Verdict.OVER_CORRECTION: "#f0e442",
+        Verdict.NOT_YET_KNOWN: "#a3a9ae",
+        Verdict.NOT_JUDGED: "#a3a9ae",
+    },
+    tiers={Tier.REMARK: "#a3a9ae", Tier.CONCERN: "#e69f00", Tier.ESCALATE: "#cc79a7"},
     on_tier={Tier.REMARK: "#14171a", Tier.CONCERN: "#14171a", Tier.ESCALATE: "#14171a"},
 )
 

@@ -92,8 +92,11 @@ def _fill(
     painter.drawPath(path)
     painter.save()
     painter.setClipPath(path)
-    if verdict is Verdict.WORSE:  # a slit across a full shape
-        painter.fillRect(QRectF(x - size, y - size * 0.16, size * 2, size * 0.24), ground)
+    if verdict is Verdict.WORSE:  # a full shape with an arrowhead pointing down; a bar would read as no entry
+        painter.setPen(solid_pen(ground, max(1.6, size * 0.15)))
+        head = [(-0.3, -0.18), (0.0, 0.12), (0.3, -0.18)]
+        painter.setBrush(Qt.BrushStyle.NoBrush)
+        painter.drawPolyline(QPolygonF([QPointF(x + dx * size, y + dy * size) for dx, dy in head]))
     elif verdict is Verdict.MIXED:  # half full
         painter.fillRect(QRectF(x - size, y - size, size, size * 2), colour)
     elif verdict is Verdict.NO_CLEAR_CHANGE:  # two bars
@@ -102,14 +105,13 @@ def _fill(
     elif verdict is Verdict.OVER_CORRECTION:  # a full core
         painter.setBrush(colour)
         painter.drawEllipse(QPointF(x, y), size * 0.2, size * 0.2)
-    elif verdict is Verdict.NOT_JUDGED:  # struck out
-        painter.setPen(solid_pen(colour, 1.4))
-        painter.drawLine(QPointF(x - size / 2, y + size / 2), QPointF(x + size / 2, y - size / 2))
+    elif verdict is Verdict.NOT_JUDGED:  # a short dash
+        painter.fillRect(QRectF(x - size * 0.18, y - size * 0.06, size * 0.36, size * 0.12), colour)
     painter.restore()
 
 
 def verdict_sign(painter: QPainter, theme: Theme, verdict: Verdict, box: QRectF) -> None:
-    """The sign beside a verdict's word: rising, falling, both, level, overshot, waiting, struck out."""
+    """The sign beside a verdict's word: rising, falling, both, level, overshot, waiting, a dash in brackets."""
     colour = QColor(theme.colours.verdicts[verdict])
     x, y, r = box.center().x(), box.center().y(), min(box.width(), box.height()) / 2
     painter.save()
@@ -126,8 +128,6 @@ def verdict_sign(painter: QPainter, theme: Theme, verdict: Verdict, box: QRectF)
         painter.setPen(Qt.PenStyle.NoPen)
         for dx in (-0.7, 0.0, 0.7):
             painter.drawEllipse(QPointF(x + dx * r, y), r * 0.22, r * 0.22)
-    if verdict is Verdict.NOT_JUDGED:
-        painter.drawEllipse(box.center(), r * 0.75, r * 0.75)
     painter.restore()
 
 
@@ -144,7 +144,11 @@ def _sign_lines(verdict: Verdict) -> tuple[tuple[tuple[float, float], ...], ...]
             ((0.0, 0.9), (0.0, -0.9)),
             ((-0.4, -0.5), (0.0, -0.95), (0.4, -0.5)),
         ),
-        Verdict.NOT_JUDGED: (((-0.5, 0.5), (0.5, -0.5)),),
+        Verdict.NOT_JUDGED: (
+            ((-0.5, -0.7), (-0.85, -0.7), (-0.85, 0.7), (-0.5, 0.7)),
+            ((0.5, -0.7), (0.85, -0.7), (0.85, 0.7), (0.5, 0.7)),
+            ((-0.3, 0.0), (0.3, 0.0)),
+        ),
     }.get(verdict, ())
 
 

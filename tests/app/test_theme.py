@@ -61,6 +61,28 @@ def test_text_can_be_read(theme, ground):
 
 
 @BOTH
+@pytest.mark.parametrize("ground", ["ground", "raised", "sunken", "wash"])
+def test_words_of_a_verdict_are_read_as_easily_as_any_text(theme, ground):
+    c = theme.colours
+    for verdict in Verdict:
+        assert contrast(c.verdict_inks[verdict], getattr(c, ground)) >= LEAST_TEXT_CONTRAST
+
+
+@pytest.mark.parametrize("tier", [Tier.CONCERN, Tier.ESCALATE])
+def test_a_tier_keeps_its_hue_in_the_dark(tier):
+    light, dark = (QColor(t.colours.tiers[tier]).hsvHue() for t in THEMES.values())
+    assert abs(light - dark) <= 20
+
+
+@BOTH
+@pytest.mark.parametrize("kind", BLINDNESS)
+def test_tiers_stay_apart_to_every_eye(theme, kind):
+    matrix, tiers = np.asarray(BLINDNESS[kind]), theme.colours.tiers
+    one, other = tiers[Tier.CONCERN], tiers[Tier.ESCALATE]
+    assert np.linalg.norm(lab(matrix @ linear(one)) - lab(matrix @ linear(other))) >= 15
+
+
+@BOTH
 def test_text_on_colour_can_be_read(theme):
     c = theme.colours
     pairs = [(c.on_accent, c.accent), (c.ink, c.support), (c.ink, c.target), (c.raised, c.ink)]
