@@ -6,9 +6,9 @@ from typing import Final, Protocol
 
 from PySide6.QtCore import QCoreApplication
 
+from core.judgement.concern import UNCONFIRMED
+
 translate = QCoreApplication.translate
-UNCONFIRMED: Final = frozenset({"from memory", "common practice"})
-"""What nobody has read in a source: it says so wherever it is shown."""
 STAR: Final = "*"
 
 

@@ -146,11 +146,11 @@ def beside_pf(pf: str, state: str) -> str:
     """The P/F, then the state of the pH by its own name: nothing may let a low P/F read as resolved.
 
     >>> beside_pf("P/F 273 mmHg", "resolved"), beside_pf("", "resolved")
-    ('P/F 273 mmHg; acidosis resolved', 'resolved')
+    ('P/F 273 mmHg; not acidotic', 'resolved')
     """
     if not pf:
         return state
-    of_ph = translate("headline", "acidosis resolved") if state == state_word(GasState.RESOLVED) else state
+    of_ph = translate("headline", "not acidotic") if state == state_word(GasState.RESOLVED) else state
     return f"{pf}; {of_ph}"
 
 

@@ -9,6 +9,7 @@ from PySide6.QtCore import QCoreApplication
 
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
 from app.course import Course
+from app.certainty import starred
 from app.finding_names import due_name, marker_name
 from app.formats import clock, minutes, quantity
 from app.headline import (
@@ -34,6 +35,7 @@ from app.phrases import (
     verdict_or_none,
 )
 from app.theme import Tier, Verdict, tier_word
+from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due
 from app.words import Reader, sentence
@@ -43,8 +45,6 @@ from core.record.instant import MINUTE, Instant
 translate = QCoreApplication.translate
 OPEN_FLAGS = ("raised", "seen")
 CLOSE = 30 * MINUTE
-FLAG_COLUMN = 38
-"""Letters that the flags' column holds at the least size of the window."""
 _STEP_ORDER = {c: n for n, c in enumerate(("mode", "ipap", "epap", "cpap", "fio2", "o2_flow"))}
 _TIERS = ("escalate", "concern", "remark")
 
@@ -288,12 +288,13 @@ class LaneWords:
 
     def _flag_item(self, flag: FlagFigure) -> LaneItem:
         evidence = "; ".join(sentence(e, self.reader) for e in flag.evidence)
-        text = f"{clock(flag.since, self.zone)} {tier_word(Tier(flag.tier))}: {marker_name(flag.marker)}. {evidence}"
+        name = starred(marker_name(flag.marker), flag.sure)
+        text = f"{clock(flag.since, self.zone)} {tier_word(Tier(flag.tier))}: {name}. {evidence}"
         return LaneItem(
             LaneKind.FLAG,
             flag.since,
             text,
-            word=marker_name(flag.marker),
+            word=name,
             tier=Tier(flag.tier),
             settled=flag.state != "raised",
             payload=flag,
@@ -352,32 +353,7 @@ def open_flags(f: EpisodeFigures) -> list[FlagFigure]:
 
 def flag_words(f: EpisodeFigures) -> list[str]:
     """The strongest open flag of each group in short words."""
-    return [marker_name(g.marker) for g in open_flags(f)]
-
-
-def short_flags(names: list[str]) -> str:
-    """Names for a narrow column: the strongest always, others while they fit, then how many more.
-
-    >>> short_flags(["pH below 7.25", "GCS fallen", "SpO2 above range on oxygen at hypercapnic risk"])
-    'pH below 7.25; GCS fallen +1'
-    """
-    short = [_brief(name.partition(":")[0]) for name in names]
-    told = short[:1]
-    for name in short[1:]:
-        if len("; ".join((*told, name))) > FLAG_COLUMN:
-            break
-        told.append(name)
-    more = len(short) - len(told)
-    return "; ".join(told) + (f" +{more}" if more else "")
-
-
-def _brief(name: str) -> str:
-    """A name without its last part where the column has no room for it; the flag's sentence says it whole.
-
-    >>> _brief("SpO2 above range on oxygen, hypercapnic risk")
-    'SpO2 above range on oxygen'
-    """
-    return name.rpartition(", ")[0] or name if len(name) > FLAG_COLUMN else name
+    return [starred(marker_name(g.marker), g.sure) for g in open_flags(f)]
 
 
 def _latest_gas(f: EpisodeFigures) -> GasFigure | None:

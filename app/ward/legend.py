@@ -1,15 +1,18 @@
-"""What the shapes of the ward view mean, in one quiet row."""
+"""What the shapes of the ward view mean, in one quiet row: outlines, fillings, and the star."""
 
 from __future__ import annotations
 
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QWidget
 
+from app.certainty import star_note
 from app.signs import Sign
-from app.theme import GasState, Theme, state_word
+from app.theme import GasState, Theme, Verdict, state_word, verdict_word
+
+FILLINGS = (Verdict.BETTER, Verdict.WORSE, Verdict.MIXED, Verdict.NO_CLEAR_CHANGE)
 
 
 class Legend(QWidget):
-    """State of a gas by its outline, each with its word."""
+    """State of a gas by its outline, its verdict by the filling, each with its word; then what a star means."""
 
     def __init__(self, theme: Theme) -> None:
         super().__init__()
@@ -17,11 +20,21 @@ class Legend(QWidget):
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(theme.px(4))
         for state in (GasState.SEVERE, GasState.ACIDOTIC, GasState.RESOLVED):
-            word = QLabel(self._word(state))
-            word.setProperty("role", "caption")
-            row.addWidget(Sign(theme, state))
-            row.addWidget(word)
-            row.addSpacing(theme.px(8))
+            self._add(row, theme, Sign(theme, state), self._word(state))
+        for verdict in FILLINGS:
+            self._add(row, theme, Sign(theme, GasState.RESOLVED, verdict=verdict), verdict_word(verdict))
+        star = QLabel(self.tr("* confirm locally"))
+        star.setToolTip(star_note())
+        star.setProperty("role", "caption")
+        row.addWidget(star)
+
+    @staticmethod
+    def _add(row: QHBoxLayout, theme: Theme, sign: Sign, text: str) -> None:
+        word = QLabel(text)
+        word.setProperty("role", "caption")
+        row.addWidget(sign)
+        row.addWidget(word)
+        row.addSpacing(theme.px(6))
 
     def _word(self, state: GasState) -> str:
         """One shape serves both: what was never acidotic has not resolved."""

@@ -80,8 +80,9 @@ DUE: Final[dict[str, str]] = {
 CONCERN: Final[dict[str, str]] = {
     "concern.due_soon": "{what:due} is due by {until:time}.",
     "concern.ended": "Support ended at {ended_at:time}.",
-    "concern.flag": "{tier:pick escalate=Escalate;concern=Concern;remark=Remark}: {marker:marker}, since "
-        "{since:time}[[; last gas {state:" + _STATE + "}]]{more:pick 0=;1=, one more flag;else=, # more flags}.",
+    "concern.flag": "{tier:pick escalate=Escalate;concern=Concern;remark=Remark}: {marker:marker}"
+        "{unconfirmed:pick yes=*;else=}, since {since:time}[[; last gas {state:" + _STATE + "}]]"
+        "{more:pick 0=;1=, one more group of flags;else=, # more groups of flags}.",
     "concern.overdue": "{what:due} is overdue since {until:time}.",
 }  # fmt: skip
 

@@ -20,6 +20,8 @@ ESCALATE, CONCERN, OVERDUE, REMARK, SOON, QUIET, ENDED = range(7)
 _TIER_RANK = {"escalate": ESCALATE, "concern": CONCERN, "remark": REMARK}
 _STATE_ORDER = {"severe": 0.0, "acidotic": 1.0}
 COMFORT_FROM = REMARK
+UNCONFIRMED = frozenset({"from memory", "common practice"})
+"""How sure a threshold is that a ward has to confirm: it says so wherever it is shown."""
 CARE = frozenset({"skin_check", "ceiling", "probable_break"})
 """Due items that nobody has to be seen for first."""
 
@@ -68,8 +70,9 @@ def _due_why(key: str, due: DueFigure) -> Message:
 
 def _flag_why(ctx: Context, flag: FlagFigure, standing: list[FlagFigure]) -> Message:
     values: dict[str, Value] = {
-        "marker": flag.marker, "tier": flag.tier, "since": flag.since, "more": len(standing) - 1,
-        "state": _state(ctx),
+        "marker": flag.marker, "tier": flag.tier, "since": flag.since,
+        "more": len({f.group for f in standing}) - 1,  # a group counts once, here as on the ward's lanes
+        "state": _state(ctx), "unconfirmed": flag.sure in UNCONFIRMED,
     }  # fmt: skip
     return Message("concern.flag", values)
 

@@ -90,7 +90,7 @@ def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
 def test_a_low_pf_never_reads_as_resolved() -> None:
     gas = GasFigure(5, "arterial", ph=7.38, state="resolved", pf_mmHg=273.0)
     now = NowFigure(ever_acidotic=True, oxygen_failure=True, pf_mmHg=273.0)
-    assert state_now(EpisodeFigures("E", 9, gases=(gas,), now=now), gas, "mmHg") == "P/F 273 mmHg; acidosis resolved"
+    assert state_now(EpisodeFigures("E", 9, gases=(gas,), now=now), gas, "mmHg") == "P/F 273 mmHg; not acidotic"
 
 
 def test_a_ph_above_its_limits_is_no_normal_one() -> None:

@@ -67,7 +67,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "due.break_end": ("break_at", "hours"),
         "due.probable_break": ("break_at", "end_at"),
         "due.spo2_recheck": ("spo2", "at", "low", "high"),
-        "concern.flag": ("marker", "tier", "since", "more", "state"),
+        "concern.flag": ("marker", "tier", "since", "more", "state", "unconfirmed"),
         "concern.overdue": ("what", "until"),
         "concern.due_soon": ("what", "until"),
         "concern.ended": ("ended_at", "by"),

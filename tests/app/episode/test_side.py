@@ -51,7 +51,7 @@ def test_the_sum_since_the_start_is_a_fact_of_its_own(told, label, against):
 def test_hypoxaemia_comes_first_and_nothing_never_acidotic_is_resolved(told):
     assert titles(told(bed("Bay A 1")))[0] == "Hypoxaemic: P/F 107 mmHg; not acidotic"
     assert titles(told(bed("Bay B 5")))[0] == "not acidotic"
-    assert titles(told(bed("Bed 3")))[0] == "P/F 273 mmHg; acidosis resolved"
+    assert titles(told(bed("Bed 3")))[0] == "P/F 273 mmHg; not acidotic"
 
 
 def test_off_the_mask_comes_before_the_settings_it_had(told):

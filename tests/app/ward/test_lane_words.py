@@ -7,7 +7,8 @@ import pytest
 from app.chart.shapes import LaneKind
 from app.course import course_of
 from app.theme import GasState, Tier, Verdict
-from app.ward.lane_words import LaneWords, OnWard, short_flags
+from app.ward.flag_column import short_flags
+from app.ward.lane_words import LaneWords, OnWard
 from app.words import Reader
 from core.judgement.shapes import NowFigure
 from tests.support.invented_ward import (
@@ -150,6 +151,7 @@ def test_every_item_is_a_sentence_of_its_own(bed):
         (["A"], "A"),
         (["A" * 60, "B"], "A" * 60 + " +1"),
         (["pH below 7.30: a higher level", "GCS fallen"], "pH below 7.30; GCS fallen"),
+        (["pH below 7.30: a higher level*", "GCS fallen*"], "pH below 7.30*; GCS fallen*"),
         (["A" * 20, "B" * 20, "C"], "A" * 20 + " +2"),
     ],
 )

@@ -57,9 +57,10 @@ def test_comfort_lowers_the_rank_and_says_the_same():
     assert comfort.why.values["marker"] == plain.why.values["marker"]
 
 
-def test_why_counts_the_other_open_flags():
+def test_why_counts_the_other_groups_of_open_flags():
     context = ctx(BASE + "02:00 ph 7.24 paco2 76", "02:10")
     flags = evaluate(context)
     why = concern(context, flags, ()).why
-    assert why.values["more"] == sum(f.ended_at is None for f in flags) - 1
+    assert why.values["more"] == sum(f.ended_at is None and f.strongest for f in flags) - 1
+    assert why.values["more"] < sum(f.ended_at is None for f in flags) - 1
     assert (why.values["tier"], why.values["state"]) == ("escalate", "severe")
