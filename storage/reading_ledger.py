@@ -103,8 +103,9 @@ def _where_in(connection: sa.Connection, column: sa.ColumnElement[str], ids: Ite
 
 
 def episode_samples(
-    connection: sa.Connection, episode: str, head: int, spans: Iterable[Entry], channel: str | None = None
-) -> tuple[DeviceSamples, ...]:
+    connection: sa.Connection, episode: str, head: int, spans: Iterable[Entry], channel: str | None = None,
+    between: tuple[Instant, Instant] | None = None,
+) -> tuple[DeviceSamples, ...]:  # fmt: skip
     """The device samples of an episode as known at `head`, one block per channel.
 
     A later block wins where it overlaps an earlier one; mask and shift entries (`spans`, in order) act on what
@@ -117,6 +118,8 @@ def episode_samples(
     if channel is not None:
         query = query.where(_c.channel == channel)
     waiting = list(spans)
+    if between is not None and not any(span.action is Action.SHIFT for span in waiting):
+        query = query.where((_c.t1 >= between[0]) & (_c.t0 <= between[1]))
     channels: dict[str, Pieces] = {}
     for seq, key, source, t0, blob, sha in connection.execute(query.order_by(_c.seq)):
         while waiting and waiting[0].seq < seq:

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections import deque
+from collections.abc import Iterable, Iterator
 from dataclasses import replace
 
 from core.record.instant import Instant
@@ -13,6 +14,8 @@ from storage.store import Store
 
 _CHUNKS_AT_ONCE = 20_000
 """Blocks of samples in one batch: enough to be quick, few enough to keep memory bounded."""
+
+_BYTES_AT_ONCE = 8 << 20
 
 _LEFT_OUT_NAMED = 1_000
 
@@ -39,27 +42,53 @@ def take_in(store: Store, intake: Intake, *, by: str, now: Instant, without_refu
         facts = {**source.facts, "left_out_rows": intake.refused_rows, "left_out_lines": lines,
                  "left_out_values": values}  # fmt: skip
         source = replace(source, facts=facts)
-    intake = replace(intake, source=source)
     honoured = store.imported and store.head() == 0
-    drafts, times = zip(*_batches(intake, by, now, honoured), strict=True)
-    receipts = store.append_drafts(drafts, times)
+    times: deque[Instant] = deque()
+    drafts = _drafts(_batches(replace(intake, source=source), by, now, honoured), times)
+    receipts = store.append_drafts(drafts, _taken_from(times))
     return replace(receipts[-1], first_seq=receipts[0].first_seq, ids=tuple(i for r in receipts for i in r.ids))
 
 
+def _drafts(batches: Iterator[tuple[DraftBatch, Instant]], times: deque[Instant]) -> Iterator[DraftBatch]:
+    """The batches, each noted in `times` as it is given; none is held (as `tee` would hold some fifty)."""
+    for draft, at in batches:
+        times.append(at)
+        yield draft
+
+
+def _taken_from(times: deque[Instant]) -> Iterator[Instant]:
+    while times:
+        yield times.popleft()
+
+
 def _batches(intake: Intake, by: str, now: Instant, honoured: bool) -> Iterator[tuple[DraftBatch, Instant]]:
-    for entries, recorded_at in _by_recording(intake.entries, now) if honoured else [(intake.entries, now)]:
-        if entries:
-            yield DraftBatch(by, "intake", entries, source=intake.source), recorded_at
-    for start in range(0, len(intake.chunks), _CHUNKS_AT_ONCE):
-        some: tuple[DraftChunk, ...] = intake.chunks[start : start + _CHUNKS_AT_ONCE]
+    """The batches one by one, each with its recording time: all of them at once would not be held in memory."""
+    groups = _by_recording(intake.entries, now) if honoured else {now: list(intake.entries)}
+    for at in sorted(groups):
+        if groups[at]:
+            yield DraftBatch(by, "intake", tuple(groups[at]), source=intake.source), at
+    for some in _parts(intake.chunks):
         yield DraftBatch(by, "intake", chunks=some, source=intake.source), now
 
 
-def _by_recording(entries: tuple[DraftEntry, ...], now: Instant) -> Iterator[tuple[tuple[DraftEntry, ...], Instant]]:
+def _parts(chunks: Iterable[DraftChunk]) -> Iterator[tuple[DraftChunk, ...]]:
+    """Chunks in parts that memory holds easily."""
+    waiting: list[DraftChunk] = []
+    size = 0
+    for chunk in chunks:
+        waiting.append(chunk)
+        size += len(chunk.block.blob)
+        if len(waiting) >= _CHUNKS_AT_ONCE or size >= _BYTES_AT_ONCE:
+            yield tuple(waiting)
+            waiting, size = [], 0
+    if waiting:
+        yield tuple(waiting)
+
+
+def _by_recording(entries: tuple[DraftEntry, ...], now: Instant) -> dict[Instant, list[DraftEntry]]:
     """Entries by the time at which they were recorded; those without one are recorded now."""
     groups: dict[Instant, list[DraftEntry]] = {}
     for draft in entries:
         claimed = draft.source_recorded_at
         groups.setdefault(now if claimed is None else min(claimed, now), []).append(draft)
-    for recorded_at in sorted(groups):
-        yield tuple(groups[recorded_at]), recorded_at
+    return groups

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -11,6 +12,7 @@ from core.record.message import Message, Value
 from core.record.samples import DeviceSamples
 from storage.chunks import decode
 from storage.draft_batch import DraftChunk, DraftEntry, SourceFacts
+from storage.intake.fresh_chunks import FreshChunks, Span
 
 MAX_LISTED = 10_000
 """Refusals and doubts that are listed; beyond them only their number is kept."""
@@ -48,7 +50,7 @@ class Intake:
 
     source: SourceFacts
     entries: tuple[DraftEntry, ...] = ()
-    chunks: tuple[DraftChunk, ...] = ()
+    chunks: FreshChunks | tuple[()] = ()
     refusals: tuple[Refusal, ...] = ()
     refused_rows: int = 0
     repeated_in_store: int = 0
@@ -61,7 +63,12 @@ class Intake:
     @property
     def sample_count(self) -> int:
         """How many device samples it would add."""
-        return sum(c.block.n for c in self.chunks)
+        return sum(span.count for span in self.spans.values())
+
+    @property
+    def spans(self) -> Mapping[tuple[str, str], Span]:
+        """Where the device samples lie, by episode and channel."""
+        return self.chunks.spans if isinstance(self.chunks, FreshChunks) else {}
 
     @property
     def samples(self) -> tuple[DeviceSamples, ...]:
@@ -74,7 +81,7 @@ class Intake:
     @property
     def episodes(self) -> tuple[str, ...]:
         """The episodes it bears on, in order of appearance."""
-        keys = [d.entry.episode for d in self.entries] + [c.episode for c in self.chunks]
+        keys = [d.entry.episode for d in self.entries] + [episode for episode, _channel in self.spans]
         return tuple(dict.fromkeys(keys))
 
 

@@ -7,9 +7,8 @@ from numpy.typing import NDArray
 
 from core.record.instant import parse
 from core.record.samples import Flags, Times
+from storage.intake.byte_fields import Bytes, Offsets
 
-Bytes = NDArray[np.uint8]
-Offsets = NDArray[np.int64]
 _SHAPE = b"dddd-dd-ddTdd:dd:dd"
 _DAYS = np.array([0, 31, 28, 31, 30, 31, 30, 31, 31, 30, 31, 30, 31])
 _EARLIEST, _LATEST = parse("1990-01-01T00:00:00Z"), parse("2099-12-31T23:59:59Z")

@@ -3,15 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import islice
 
 from core.record.message import Message
-from storage.draft_batch import DraftChunk, SourceFacts
+from storage.draft_batch import SourceFacts
 from storage.intake.entry_rows import EntryRows
 from storage.intake.findings import Findings, Intake, Refusal
-from storage.intake.held_samples import held_samples
+from storage.intake.fresh_chunks import FreshChunks
+from storage.intake.held_samples import HeldSamples
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
 from storage.store import Store
+
+_HOURS_AT_ONCE = 200
+"""Hours that are compared at once with what the store has: enough to be quick, few enough for memory."""
 
 
 def judged_intake(
@@ -25,8 +30,9 @@ def judged_intake(
     for again in spool.repeated:
         message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
         findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
+    findings.refused_rows += spool.repeated_count - len(spool.repeated)
     return Intake(
-        source, entries, chunks,
+        source, entries, chunks if len(chunks) else (),
         tuple(sorted(findings.refusals, key=lambda r: r.line)), findings.refused_rows,
         judged.repeated + known + repeated,
         tuple(sorted(findings.doubts, key=lambda d: d.line)), whole,
@@ -34,15 +40,18 @@ def judged_intake(
     )  # fmt: skip
 
 
-def new_chunks(spool: SampleSpool, source_id: str, existing: Store | None) -> tuple[tuple[DraftChunk, ...], int]:
+def new_chunks(spool: SampleSpool, source_id: str, existing: Store | None) -> tuple[FreshChunks, int]:
     """The hours of samples that the store does not have just so, and how many samples it has."""
-    fresh: list[DraftChunk] = []
+    fresh = FreshChunks(source_id)
     known = 0
     for key in spool.kinds():
-        held = None if existing is None else held_samples(existing, *key)
-        for block in spool.blocks(key):
-            if held is not None and held.has(block):
-                known += block.n
-            else:
-                fresh.append(DraftChunk(*key, source_id, block))
-    return tuple(fresh), known
+        held = None if existing is None else HeldSamples(existing, *key)
+        blocks = iter(spool.blocks(key))
+        while some := tuple(islice(blocks, _HOURS_AT_ONCE)):
+            have = held.have(some) if held is not None else [False] * len(some)
+            for block, is_held in zip(some, have, strict=True):
+                if is_held:
+                    known += block.n
+                else:
+                    fresh.add(key, block)
+    return fresh, known

@@ -1,10 +1,16 @@
-"""Device samples on their way from a file to the store: gathered per episode and channel, in bounded memory."""
+"""Device samples on their way from a file to the store: gathered per episode and channel, in bounded memory.
+
+Samples wait as plain arrays. When many wait, they are packed by the hour and put aside; an hour that comes in several
+pieces is put together when it is asked for. What stays in memory of packed hours is where they lie.
+"""
 
 from __future__ import annotations
 
-import zlib
+from array import array
 from collections.abc import Iterator
 from dataclasses import dataclass, field
+from itertools import groupby
+from struct import Struct
 
 import numpy as np
 from numpy.typing import NDArray
@@ -13,27 +19,32 @@ from core.record.channels import Channel
 from core.record.instant import HOUR, Instant
 from core.record.samples import Times, Values
 from storage.chunks import Block, decode, hour_blocks
+from storage.intake.findings import MAX_LISTED
+from storage.intake.sealed_file import SealedFile
 
 Lines = NDArray[np.int32]
-_PENDING = 2_000_000
+_PENDING = 1_200_000
 """Samples held as plain arrays (20 bytes each) before they are packed."""
+_HEAD = Struct("<qqII")
+"""What stands before a packed hour's block: its first and last moment, how many samples, bytes of their lines."""
 
 
 @dataclass(slots=True)
 class _Series:
-    """One channel of one episode. `packed` holds what was compressed early, hour by hour, with its lines."""
+    """One channel of one episode: what waits, and of its packed hours their number and where they lie."""
 
     t: list[Times] = field(default_factory=list)
     v: list[Values] = field(default_factory=list)
     lines: list[Lines] = field(default_factory=list)
     decimals: int = 0
-    packed: dict[int, list[tuple[Block, bytes]]] = field(default_factory=dict)
+    packed: array[int] = field(default_factory=lambda: array("q"))
 
     def in_order(self) -> tuple[Times, Values, Lines]:
         """What is held as plain arrays, by time; rows of one time in order of lines."""
         if not self.t:
             return np.empty(0, np.int64), np.empty(0), np.empty(0, np.int32)
         t, v, lines = np.concatenate(self.t), np.concatenate(self.v), np.concatenate(self.lines)
+        self.clear()
         if not (t[1:] > t[:-1]).all():
             order = np.lexsort((lines, t))
             t, v, lines = t[order], v[order], lines[order]
@@ -65,12 +76,17 @@ class LeakUse:
 
 
 class SampleSpool:
-    """Gathers samples; `blocks` gives them hour by hour, `repeated` those that stand twice."""
+    """Gathers samples; `blocks` gives them hour by hour.
+
+    `repeated` are those that stand twice, as far as they are listed; `repeated_count` counts them all.
+    """
 
     def __init__(self) -> None:
         self._series: dict[tuple[str, str], _Series] = {}
+        self._sealed = SealedFile()
         self._pending = 0
         self.repeated: list[Repeated] = []
+        self.repeated_count = 0
         self.leak_uses: dict[tuple[str, str], LeakUse] = {}
         self.units: dict[str, set[str]] = {}
 
@@ -105,30 +121,6 @@ class SampleSpool:
         """The (episode, channel) pairs with samples."""
         return list(self._series)
 
-    def _pack(self) -> None:
-        for key, series in self._series.items():
-            t, v, lines = self._without_repeats(key, *series.in_order())
-            at = 0
-            for block in hour_blocks(t, v, series.decimals):
-                held = zlib.compress(np.diff(lines[at : at + block.n], prepend=np.int32(0)).tobytes(), 1)
-                series.packed.setdefault(block.t0 // HOUR, []).append((block, held))
-                at += block.n
-            series.clear()
-        self._pending = 0
-
-    def _without_repeats(
-        self, key: tuple[str, str], t: Times, v: Values, lines: Lines
-    ) -> tuple[Times, Values, Lines]:
-        again = np.flatnonzero(t[1:] == t[:-1]) + 1
-        if again.size == 0:
-            return t, v, lines
-        for i in again:
-            first = int(np.searchsorted(t, t[i]))
-            self.repeated.append(Repeated(int(lines[i]), int(lines[first]), *key, int(t[i])))
-        keep = np.ones(t.size, np.bool_)
-        keep[again] = False
-        return t[keep], v[keep], lines[keep]
-
     def blocks(self, key: tuple[str, str]) -> Iterator[Block]:
         """The samples of one episode and channel as blocks, hour by hour, repeats left out and noted."""
         series = self._series[key]
@@ -136,20 +128,67 @@ class SampleSpool:
             t, v, _lines = self._without_repeats(key, *series.in_order())
             yield from hour_blocks(t, v, series.decimals)
             return
-        self._pack()
-        for hour in sorted(series.packed):
-            yield from self._one_hour(key, series.packed[hour], series.decimals)
+        self._pack_series(key, series)
+        hours = np.frombuffer(series.packed, np.int64)[::2]
+        order = np.argsort(hours, kind="stable")
+        for _hour, places in groupby(order.tolist(), key=lambda i: int(hours[i])):
+            yield from self._one_hour(key, [series.packed[2 * i + 1] for i in places], series.decimals)
 
-    def _one_hour(self, key: tuple[str, str], pieces: list[tuple[Block, bytes]], decimals: int) -> Iterator[Block]:
-        if len(pieces) == 1:
-            yield pieces[0][0]
-            return
+    def _pack(self) -> None:
+        for key, series in self._series.items():
+            self._pack_series(key, series)
+        self._pending = 0
+
+    def _pack_series(self, key: tuple[str, str], series: _Series) -> None:
+        t, v, lines = self._without_repeats(key, *series.in_order())
+        at = 0
+        for block in hour_blocks(t, v, series.decimals):
+            written = _lines_as_bytes(lines[at : at + block.n])
+            head = _HEAD.pack(block.t0, block.t1, block.n, len(written))
+            series.packed.extend((block.t0 // HOUR, self._sealed.put(head + written + block.blob)))
+            at += block.n
+
+    def _without_repeats(
+        self, key: tuple[str, str], t: Times, v: Values, lines: Lines
+    ) -> tuple[Times, Values, Lines]:
+        again = np.flatnonzero(t[1:] == t[:-1]) + 1
+        if again.size == 0:
+            return t, v, lines
+        self.repeated_count += again.size
+        for i in again[: MAX_LISTED - len(self.repeated)].tolist():
+            first = int(np.searchsorted(t, t[i]))
+            self.repeated.append(Repeated(int(lines[i]), int(lines[first]), *key, int(t[i])))
+        keep = np.ones(t.size, np.bool_)
+        keep[again] = False
+        return t[keep], v[keep], lines[keep]
+
+    def _one_hour(self, key: tuple[str, str], places: list[int], decimals: int) -> Iterator[Block]:
         merged = _Series(decimals=decimals)
-        for block, held in pieces:
-            t, v, _decimals = decode(block.blob, block.t0)
+        for place in places:
+            data = self._sealed.get(place)
+            t0, t1, n, written = _HEAD.unpack_from(data)
+            block = Block(t0, t1, n, data[_HEAD.size + written :])
+            if len(places) == 1:
+                yield block
+                return
+            t, v, _decimals = decode(block.blob, t0)
             merged.t.append(t)
             merged.v.append(v)
-            steps = np.frombuffer(zlib.decompress(held), np.int32)
-            merged.lines.append(np.cumsum(steps, dtype=np.int32))
+            merged.lines.append(_lines_from_bytes(data[_HEAD.size : _HEAD.size + written], n))
         t, v, _lines = self._without_repeats(key, *merged.in_order())
         yield from hour_blocks(t, v, decimals)
+
+
+def _lines_as_bytes(lines: Lines) -> bytes:
+    """Lines that keep one step as first and step; others as they are."""
+    step = int(lines[1] - lines[0]) if lines.size > 1 else 0
+    if lines.size < 3 or (np.diff(lines) == step).all():
+        return np.array([lines[0], step], "<i4").tobytes()
+    return lines.astype("<i4").tobytes()
+
+
+def _lines_from_bytes(data: bytes, n: int) -> Lines:
+    read = np.frombuffer(data, "<i4").astype(np.int32)
+    if n < 3 or read.size == 2:
+        return np.asarray(read[0] + read[1] * np.arange(n), np.int32)
+    return read

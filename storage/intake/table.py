@@ -82,7 +82,7 @@ def open_table(path: Path | str, *, sheet: str = "", encoding: str = "", header_
     rows: list[list[str]] = []
     lines: list[int] = []
     for block in TextTable(file, dialect):
-        rows += block.rows if block.columns is None else [list(row) for row in zip(*block.columns, strict=True)]
+        rows += block.as_rows()
         lines += block.lines
         if len(rows) > FIRST_ROWS:
             break

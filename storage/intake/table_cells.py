@@ -58,35 +58,20 @@ def check_mark(known: Channel, text: str, decimal: str) -> None:
         raise refuse("value.other_mark", channel=known.key, value=text[:40], accepted=accepted)
 
 
-class DeviceCells:
-    """Values of one device column; each distinct text is read once."""
+def device_cell(known: Channel, text: str, unit: str, decimal: str) -> tuple[float, int] | None:
+    """A device's value in the canonical unit and its decimals; NaN where there is none; None where it is refused."""
+    text = text.strip()
+    if is_absent(text):
+        return (nan, 0)
+    if ("," if decimal == "." else ".") in text:
+        return None
+    return read_device_value(known, text, unit)
 
-    _MOST = 200_000
 
-    def __init__(self, known: Channel, unit: str, decimal: str) -> None:
-        self._known, self._unit, self._decimal = known, unit, decimal
-        self._read: dict[str, tuple[float, int] | None] = {}
-
-    def read(self, text: str) -> tuple[float, int] | None:
-        """The value in the canonical unit and its decimals; NaN where there is none; None where it is refused."""
-        if text in self._read:
-            return self._read[text]
-        if len(self._read) > self._MOST:
-            self._read.clear()
-        given, text = text, text.strip()
-        if is_absent(text):
-            found: tuple[float, int] | None = (nan, 0)
-        elif ("," if self._decimal == "." else ".") in text:
-            found = None
-        else:
-            found = read_device_value(self._known, text, self._unit)
-        self._read[given] = found
-        return found
-
-    def fault(self, text: str) -> RecordError:
-        """Why a text was refused."""
-        try:
-            read_cell(self._known, text, self._unit, self._decimal, TimeUse())
-        except RecordError as error:
-            return error
-        return refuse("value.not_a_number", channel=self._known.key, value=text[:40], accepted="a number")
+def fault_of(known: Channel, text: str, unit: str, decimal: str) -> RecordError:
+    """Why a device's value was refused."""
+    try:
+        read_cell(known, text, unit, decimal, TimeUse())
+    except RecordError as error:
+        return error
+    return refuse("value.not_a_number", channel=known.key, value=text[:40], accepted="a number")

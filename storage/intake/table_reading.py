@@ -49,7 +49,8 @@ def read_table(
         values = {"encoding": opened.dialect.encoding}
         findings.doubt(1, "", opened.dialect.encoding, Message("table.encoding_assumed", values))
     source = SourceFacts("table", path.name, blocks.sha, blocks.size, _facts(opened, mapping, answers, spool))
-    return judged_intake(source, [*rows.entries, *changes.rows()], spool, findings, existing)
+    made = sorted([*rows.entries, *changes.rows()], key=lambda row: row.line)
+    return judged_intake(source, made, spool, findings, existing)
 
 
 def unreadable_table(path: Path, error: UnreadableFileError) -> Intake:

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Iterator
+from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,18 +16,23 @@ from core.record.instant import Instant
 from core.record.message import Message, RecordError, Value, refuse
 from core.record.samples import Flags, Times
 from storage.draft_batch import DraftEntry
+from storage.intake.byte_fields import ByteFields, Offsets, fields_of
 from storage.intake.coded_value import SELF_EVIDENT
+from storage.intake.distinct import groups
 from storage.intake.findings import CLOCK_LEAD, Findings
 from storage.intake.held_settings import SettingChanges
 from storage.intake.mapping import Mapping, is_sampled
+from storage.intake.number_columns import NumberColumn
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
 from storage.intake.table import fitted
-from storage.intake.table_cells import DeviceCells, is_absent, read_cell
+from storage.intake.table_cells import device_cell, fault_of, is_absent, read_cell
 from storage.intake.table_text import RowBlock
-from storage.intake.table_times import read_time, read_times
+from storage.intake.table_times import read_time
+from storage.intake.time_columns import read_times
 
 _MOST_KEY = 200
+_FAR = 1 << 62
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,12 +48,27 @@ class Answers:
 
 @dataclass(frozen=True, slots=True)
 class _Rows:
-    """Rows of a block by column, with their instants. `good` tells which instants could be read."""
+    """Rows of a block of one episode: their places in its fields, their lines and instants."""
 
+    fields: ByteFields
+    at: Offsets
     lines: NDArray[np.int32]
-    columns: list[list[str]]
     t: Times
-    good: Flags
+    episode: str = ""
+
+    def some(self, places: Offsets | Flags, episode: str | None = None) -> _Rows:
+        """Some of the rows."""
+        of = self.episode if episode is None else episode
+        return _Rows(self.fields, self.at[places], self.lines[places], self.t[places], of)
+
+
+@dataclass(frozen=True, slots=True)
+class _Target:
+    """What a column's values are."""
+
+    column: str
+    channel: Channel
+    unit: str
 
 
 class TableRows:
@@ -61,229 +82,218 @@ class TableRows:
         self._now, self._findings, self._spool, self._changes = now, findings, spool, changes
         self._shift = round(answers.clock_shift_s * 1_000_000)
         self._place = {name: i for i, name in enumerate(header)}
-        self._cells: dict[tuple[str, str], DeviceCells] = {}
+        self._numbers: dict[tuple[str, str], NumberColumn] = {}
+        self._before: dict[tuple[str, str], tuple[str, int]] = {}
         self.entries: list[EntryRow] = []
         self.rows = 0
 
     def take(self, block: RowBlock) -> None:
         """Take a block of rows."""
-        rows = self._timed(block)
-        if rows is None:
+        fields, lines = self._fields(block)
+        rows = np.flatnonzero(fields.length.any(axis=0)) if fields.rows else np.empty(0, np.int64)
+        rows = self._as_wide_as_the_header(fields, rows, lines)
+        self.rows += rows.size
+        if rows.size == 0:
             return
-        episodes = self._episodes(rows)
-        if self._mapping.long is not None:
-            self._take_long(rows, episodes)
-        else:
-            for use in self._mapping.used:
-                texts = rows.columns[self._place[use.column]]
-                self._take_column(rows, episodes, use.column, CHANNELS[use.channel], use.unit, texts)
+        t, good = self._times(fields, rows, lines)
+        timed = _Rows(fields, rows, lines[rows], t).some(good)
+        for of_one in self._by_episode(timed):
+            if self._mapping.long is not None:
+                self._take_long(of_one)
+            else:
+                for use in self._mapping.used:
+                    self._take_column(of_one, _Target(use.column, CHANNELS[use.channel], use.unit))
 
-    def _timed(self, block: RowBlock) -> _Rows | None:
-        columns, dates = block.columns, self._place[self._mapping.time.date]
-        if columns is None or len(columns) != len(self._header) or "" in columns[dates]:
-            block = _by_rows(block)
-            found = self._fitted(block)
-            if found is None:
-                return None
-            columns, lines = found
-        else:
-            lines = list(block.lines)
-        self.rows += len(lines)
-        t, good = self._times(columns, lines)
-        return _Rows(np.array(lines, np.int32), columns, t, good)
+    # rows and their times
 
-    def _fitted(self, block: RowBlock) -> tuple[list[list[str]], list[int]] | None:
-        """The columns of rows that are as wide as the header; others are refused, empty ones passed over."""
+    def _fields(self, block: RowBlock) -> tuple[ByteFields, NDArray[np.int32]]:
+        """The fields of a block; rows that are wider than the header are refused."""
+        if block.fields is not None:
+            return block.fields, np.asarray(block.lines, np.int32)
         width = len(self._header)
         kept, lines = [], []
         for cells, line in zip(block.rows, block.lines, strict=True):
             row = fitted(cells, width)
             if len(row) != width:
-                message = Message("row.columns", {"found": len(row), "accepted": width})
-                self._findings.refuse(line, "", ",".join(cells)[:80], message)
-            elif any(row):
+                self._refuse_width(line, ",".join(cells), len(row))
+            else:
                 kept.append(row)
                 lines.append(line)
-        return (list(map(list, zip(*kept, strict=True))), lines) if kept else None
+        return fields_of(kept), np.array(lines, np.int32)
 
-    def _times(self, columns: list[list[str]], lines: list[int]) -> tuple[Times, Flags]:
+    def _as_wide_as_the_header(self, fields: ByteFields, rows: Offsets, lines: NDArray[np.int32]) -> Offsets:
+        """The rows with nothing behind the header's last column; others are refused."""
+        width = len(self._header)
+        if fields.start.shape[0] <= width:
+            return rows
+        beyond = fields.length[width:, rows].any(axis=0)
+        for row in rows[beyond].tolist():
+            cells = [fields.text(row, c).strip() for c in range(fields.start.shape[0])]
+            found = len(fitted(cells, width))
+            if found != width:
+                self._refuse_width(int(lines[row]), ",".join(cells), found)
+        return rows[~beyond]
+
+    def _refuse_width(self, line: int, shown: str, found: int) -> None:
+        message = Message("row.columns", {"found": found, "accepted": len(self._header)})
+        self._findings.refuse(line, "", shown[:80], message)
+
+    def _times(self, fields: ByteFields, rows: Offsets, lines: NDArray[np.int32]) -> tuple[Times, Flags]:
         use = self._mapping.time
-        texts = list(columns[self._place[use.date]])
-        if use.clock:
-            clocks = columns[self._place[use.clock]]
-            texts = [f"{d.split(' ')[0]} {c}" for d, c in zip(texts, clocks, strict=True)]
-        t, good = read_times(texts, use)
+        date, clock = self._place[use.date], self._place[use.clock] if use.clock else None
+        t, good = read_times(fields, date, clock, rows, use)
         for i in np.flatnonzero(~good).tolist():
+            text = self._time_text(fields, int(rows[i]))
             try:
-                t[i], good[i] = read_time(texts[i], use), True
+                t[i], good[i] = read_time(text, use), True
             except RecordError as error:
-                self._findings.refuse(lines[i], use.date, texts[i], error.message)
+                self._findings.refuse(int(lines[rows[i]]), use.date, text, error.message)
         t += self._shift
-        latest = self._now + CLOCK_LEAD
-        for i in np.flatnonzero(good & (t > latest)).tolist():
-            values: dict[str, Value] = {"value": texts[i][:80], "now": instant.iso_second(self._now),
+        for i in np.flatnonzero(good & (t > self._now + CLOCK_LEAD)).tolist():
+            text = self._time_text(fields, int(rows[i]))
+            values: dict[str, Value] = {"value": text[:80], "now": instant.iso_second(self._now),
                                         "accepted": "at most 5 min ahead of the clock"}  # fmt: skip
-            message = Message("instant.in_future", values)
-            self._findings.refuse(lines[i], use.date, texts[i], message)
+            self._findings.refuse(int(lines[rows[i]]), use.date, text, Message("instant.in_future", values))
             good[i] = False
         return t, good
 
-    def _episodes(self, rows: _Rows) -> Sequence[str]:
-        """The episode of each row; an empty one is refused."""
-        if not self._mapping.episode_column:
-            return (self._answers.episode,) * len(rows.lines)
-        texts = [x.strip() for x in rows.columns[self._place[self._mapping.episode_column]]]
-        for i, text in enumerate(texts):
-            if not text or len(text) > _MOST_KEY:
-                values: dict[str, Value] = {
-                    "value": text[:80],
-                    "accepted": f"a key of 1 to {_MOST_KEY} letters",
-                }
-                message = Message("entry.no_episode", values)
-                self._findings.refuse(int(rows.lines[i]), self._mapping.episode_column, text, message)
-                rows.good[i] = False
-        return texts
+    def _time_text(self, fields: ByteFields, row: int) -> str:
+        use = self._mapping.time
+        text = fields.text(row, self._place[use.date]).strip()
+        return f"{text.split(' ')[0]} {fields.text(row, self._place[use.clock]).strip()}" if use.clock else text
 
-    def _take_long(self, rows: _Rows, episodes: Sequence[str]) -> None:
+    def _by_episode(self, rows: _Rows) -> Iterator[_Rows]:
+        """The rows of each episode; those with none are refused."""
+        if not self._mapping.episode_column:
+            yield replace(rows, episode=self._answers.episode)
+            return
+        column = self._place[self._mapping.episode_column]
+        of: dict[str, list[Offsets]] = {}
+        for places in groups(rows.fields, (column,), rows.at):
+            of.setdefault(rows.fields.text(int(rows.at[places[0]]), column).strip(), []).append(places)
+        for key, found in of.items():
+            some = rows.some(np.sort(np.concatenate(found)), key)
+            if key and len(key) <= _MOST_KEY:
+                yield some
+                continue
+            values: dict[str, Value] = {"value": key[:80], "accepted": f"a key of 1 to {_MOST_KEY} letters"}
+            for line in some.lines.tolist():
+                self._findings.refuse(line, self._mapping.episode_column, key, Message("entry.no_episode", values))
+
+    # values
+
+    def _take_long(self, rows: _Rows) -> None:
         long = self._mapping.long
         if long is None:
             return
-        words = [x.strip() for x in rows.columns[self._place[long.channel]]]
-        values = rows.columns[self._place[long.value]]
-        units = [x.strip() for x in rows.columns[self._place[long.unit]]] if long.unit else None
-        groups: dict[tuple[str, str], list[int]] = {}
-        for i, word in enumerate(words):
-            groups.setdefault((word, units[i] if units else long.units.get(word, "")), []).append(i)
-        for (word, unit), places in groups.items():
+        columns = [self._place[c] for c in (long.channel, long.unit) if c]
+        for places in groups(rows.fields, columns, rows.at):
+            some = rows.some(places)
+            word, *unit = (some.fields.text(int(some.at[0]), c).strip() for c in columns)
             key = long.names.get(word)
             if key is None:
                 error = refuse("mapping.word_unknown", value=word[:80], accepted="a word that the mapping names")
-                for i in places:
-                    self._findings.refuse(int(rows.lines[i]), long.channel, word, error.message)
+                for line in some.lines.tolist():
+                    self._findings.refuse(line, long.channel, word, error.message)
             elif key:
-                some = np.array(places)
-                columns = [[c[i] for i in places] for c in rows.columns]
-                part = _Rows(rows.lines[some], columns, rows.t[some], rows.good[some])
-                texts = tuple(values[i] for i in places)
-                of = tuple(episodes[i] for i in places)
-                self._take_unit(part, of, long.value, CHANNELS[key], unit, texts)
+                given = unit[0] if unit else long.units.get(word, "")
+                self._take_unit(some, _Target(long.value, CHANNELS[key], given))
 
-    def _take_unit(
-        self,
-        rows: _Rows,
-        episodes: Sequence[str],
-        column: str,
-        known: Channel,
-        unit: str,
-        texts: Sequence[str],
-    ) -> None:
+    def _take_unit(self, rows: _Rows, target: _Target) -> None:
         """A column whose unit the table itself names: it must be one of the channel's, and must be there."""
-        if known.kind is Kind.NUMBER:
-            try:
-                given = unit or (known.unit if len(known.units) == 1 or known.unit in SELF_EVIDENT else "")
-                unit = known.unit_named(given).name if given else _no_unit(known)
-            except RecordError as error:
-                for line, text in zip(rows.lines.tolist(), texts, strict=True):
-                    if not is_absent(text):
-                        self._findings.refuse(line, column, f"{text} {unit}".strip(), error.message)
-                return
-        self._take_column(rows, episodes, column, known, unit if known.kind is Kind.NUMBER else "", texts)
-
-    def _take_column(
-        self,
-        rows: _Rows,
-        episodes: Sequence[str],
-        column: str,
-        known: Channel,
-        unit: str,
-        texts: Sequence[str],
-    ) -> None:
-        if is_sampled(self._mapping, known.key):
-            self._take_samples(rows, episodes, column, known, unit, texts)
+        known, unit = target.channel, target.unit
+        if known.kind is not Kind.NUMBER:
+            self._take_column(rows, replace(target, unit=""))
             return
-        texts = [x.strip() for x in texts]
-        if self._mapping.written_by == "device":
-            self._take_changes(rows, episodes, column, known, unit, texts)
+        try:
+            given = unit or (known.unit if len(known.units) == 1 or known.unit in SELF_EVIDENT else "")
+            unit = known.unit_named(given).name if given else _no_unit(known)
+        except RecordError as error:
+            column = self._place[target.column]
+            for row, line in zip(rows.at.tolist(), rows.lines.tolist(), strict=True):
+                text = rows.fields.text(row, column).strip()
+                if not is_absent(text):
+                    self._findings.refuse(line, target.column, f"{text} {unit}".strip(), error.message)
+            return
+        self._take_column(rows, replace(target, unit=unit))
+
+    def _take_column(self, rows: _Rows, target: _Target) -> None:
+        if is_sampled(self._mapping, target.channel.key):
+            self._take_samples(rows, target)
+        elif self._mapping.written_by == "device":
+            self._take_changes(rows, target)
         else:
-            for i, text in enumerate(texts):
-                if rows.good[i] and not is_absent(text):
-                    made = self._entry(rows, i, episodes[i], column, known, unit, text)
+            column = self._place[target.column]
+            for i, row in enumerate(rows.at.tolist()):
+                text = rows.fields.text(row, column).strip()
+                if not is_absent(text):
+                    made = self._entry(rows, i, target, text)
                     self.entries += [made] if made is not None else []
 
-    def _take_samples(
-        self,
-        rows: _Rows,
-        episodes: Sequence[str],
-        column: str,
-        known: Channel,
-        unit: str,
-        texts: Sequence[str],
-    ) -> None:
-        cells = self._cells.setdefault((known.key, unit), DeviceCells(known, unit, self._mapping.decimal))
-        distinct = {text: cells.read(text) for text in set(texts)}
-        good = rows.good
-        if None in distinct.values():
-            good = good.copy()
-            for i, text in enumerate(texts):
-                if distinct[text] is None:
-                    if good[i]:
-                        self._findings.refuse(int(rows.lines[i]), column, text, cells.fault(text).message)
-                    good[i] = False
-        values = {text: 0.0 if found is None else found[0] for text, found in distinct.items()}
-        numbers = np.fromiter(map(values.__getitem__, texts), np.float64, len(texts))
-        decimals = max((r[1] for r in distinct.values() if r is not None), default=0)
-        definition = self._mapping.leak_definition if known.key == "leak" else ""
-        whose = dict.fromkeys(episodes)
-        for episode in whose:
-            mine = good if len(whose) == 1 else good & np.array([e == episode for e in episodes])
-            if mine.any():
-                self._spool.add(episode, known, unit, definition, rows.t[mine], numbers[mine], rows.lines[mine],
-                                decimals)  # fmt: skip
+    def _take_samples(self, rows: _Rows, target: _Target) -> None:
+        known, unit, column = target.channel, target.unit, self._place[target.column]
+        numbers = self._numbers_of(known, unit).read(rows.fields, column, rows.at)
+        good = numbers.good
+        if not good.all():
+            for i in np.flatnonzero(~good).tolist():
+                text = rows.fields.text(int(rows.at[i]), column).strip()
+                fault = fault_of(known, text, unit, self._mapping.decimal)
+                self._findings.refuse(int(rows.lines[i]), target.column, text, fault.message)
+            rows = rows.some(good)
+        if rows.at.size:
+            definition = self._mapping.leak_definition if known.key == "leak" else ""
+            self._spool.add(rows.episode, known, unit, definition, rows.t, numbers.values[good], rows.lines,
+                            int(numbers.decimals[good].max()))  # fmt: skip
 
-    def _take_changes(
-        self,
-        rows: _Rows,
-        episodes: Sequence[str],
-        column: str,
-        known: Channel,
-        unit: str,
-        texts: Sequence[str],
-    ) -> None:
+    def _numbers_of(self, known: Channel, unit: str) -> NumberColumn:
+        key, mark = (known.key, unit), self._mapping.decimal
+        if key not in self._numbers:
+            self._numbers[key] = NumberColumn(known, unit, lambda text: device_cell(known, text, unit, mark), mark)
+        return self._numbers[key]
+
+    def _take_changes(self, rows: _Rows, target: _Target) -> None:
         """What a device writes in every row and a person sets now and then: only its changes are entries."""
-        before: tuple[str, str] | None = None
-        for i, text in enumerate(texts):
-            if not rows.good[i] or is_absent(text) or (episodes[i], text) == before:
+        column, key = self._place[target.column], (rows.episode, target.channel.key)
+        starts = np.append(_runs(rows, column), rows.at.size)
+        for i, end in pairwise(starts.tolist()):
+            text = rows.fields.text(int(rows.at[i]), column).strip()
+            before, since = self._before.get(key, ("", -_FAR))
+            if is_absent(text) or (text == before and rows.t[i] >= since):
                 continue
-            made = self._entry(rows, i, episodes[i], column, known, unit, text)
-            if made is not None:
-                before = (episodes[i], text)
-                self._changes.note(made)
+            made = self._entry(rows, i, target, text)
+            if made is None:
+                for k in range(i + 1, end):  # each row is named, not the first alone
+                    self._entry(rows, k, target, text)
+                continue
+            self._before[key] = (text, int(rows.t[end - 1]))
+            self._changes.note(made)
 
-    def _entry(
-        self, rows: _Rows, i: int, episode: str, column: str, known: Channel, unit: str, text: str
-    ) -> EntryRow | None:
-        line = int(rows.lines[i])
+    def _entry(self, rows: _Rows, i: int, target: _Target, text: str) -> EntryRow | None:
+        line, row = int(rows.lines[i]), int(rows.at[i])
         try:
-            reading = read_cell(known, text, unit, self._mapping.decimal, self._mapping.time)
+            reading = read_cell(target.channel, text, target.unit, self._mapping.decimal, self._mapping.time)
         except RecordError as error:
-            self._findings.refuse(line, column, text, error.message)
+            self._findings.refuse(line, target.column, text, error.message)
             return None
-        column_of_by = self._mapping.by_column
-        by = rows.columns[self._place[column_of_by]][i].strip() if column_of_by else ""
+        column = self._mapping.by_column
+        by = rows.fields.text(row, self._place[column]).strip() if column else ""
         by = "device" if self._mapping.written_by == "device" else by or "table"
         zone = self._mapping.time.zone or "UTC"
-        entry = from_reading(episode, int(rows.t[i]), reading, by=by, zone=zone)
-        definition = self._mapping.leak_definition if known.key == "leak" else ""
+        entry = from_reading(rows.episode, int(rows.t[i]), reading, by=by, zone=zone)
+        definition = self._mapping.leak_definition if target.channel.key == "leak" else ""
         if definition:
-            self._spool.note_leak(episode, definition, entry.at, entry.at, line)
+            self._spool.note_leak(rows.episode, definition, entry.at, entry.at, line)
         return EntryRow(line, DraftEntry(entry), definition, reading.doubts)
 
 
-def _by_rows(block: RowBlock) -> RowBlock:
-    """A block by rows, whichever way it was cut."""
-    if block.columns is None:
-        return block
-    return RowBlock([list(row) for row in zip(*block.columns, strict=True)], block.lines)
+def _runs(rows: _Rows, column: int) -> Offsets:
+    """Where a column's text begins to be another than in the row before, or the time steps back."""
+    new = np.ones(rows.at.size, np.bool_)
+    new[1:] = rows.t[1:] < rows.t[:-1]
+    for part in range(rows.fields.parts(column, rows.at)):
+        word = rows.fields.word(column, part, rows.at)
+        new[1:] |= word[1:] != word[:-1]
+    return np.flatnonzero(new)
 
 
 def _no_unit(known: Channel) -> str:

@@ -9,9 +9,8 @@ from dataclasses import dataclass
 from hashlib import sha256
 from pathlib import Path
 
-import numpy as np
-
 from core.record.message import refuse
+from storage.intake.byte_fields import ByteFields, cut_fields
 from storage.intake.findings import unreadable
 from storage.intake.steady_file import SteadyFile
 from storage.intake.table_dialect import Dialect
@@ -27,12 +26,19 @@ _FIRST = 256
 class RowBlock:
     """Rows of cells, and the line (from 1) on which each begins.
 
-    A plain block (no quotes, every row as wide as the header) has its cells by column instead, not yet stripped.
+    A plain block (no quotes, every row as wide as the header) has fields of bytes instead of rows.
     """
 
     rows: list[list[str]]
     lines: Sequence[int]
-    columns: list[list[str]] | None = None
+    fields: ByteFields | None = None
+
+    def as_rows(self) -> list[list[str]]:
+        """The rows as cells, whichever way the block was cut."""
+        if self.fields is None:
+            return self.rows
+        columns = [self.fields.texts(i) for i in range(self.fields.start.shape[0])]
+        return [list(row) for row in zip(*columns, strict=True)]
 
 
 class TextTable:
@@ -72,21 +78,16 @@ class TextTable:
         steady.check()
 
     def _plain_block(self, text: str, before: int) -> tuple[RowBlock, int] | None:
-        """A block by columns, cut at once; None where it holds quotes, empty lines or rows of another width."""
-        if not self._width or '"' in text or before < self._dialect.header_line:
+        """A block of fields, cut at once; None where it holds quotes, empty lines or rows of another width."""
+        if not self._width or before < self._dialect.header_line:
             return None
-        raw = np.frombuffer(text.encode(), np.uint8)
-        cuts = np.flatnonzero((raw == ord(self._dialect.delimiter)) | (raw == 10))
         count = text.count("\n")
-        if not text.endswith("\n") or self._width < 2 or cuts.size != count * self._width:
+        if not text.endswith("\n") or self._width < 2:
             return None
-        ends = raw[cuts].reshape(count, self._width) == 10
-        if not ends[:, -1].all() or ends[:, :-1].any():
+        fields = cut_fields(text.encode(), self._dialect.delimiter, self._width, count)
+        if fields is None:
             return None
-        cells = text.replace("\n", self._dialect.delimiter).split(self._dialect.delimiter)
-        cells.pop()
-        columns = [cells[i :: self._width] for i in range(self._width)]
-        return RowBlock([], range(before + 1, before + count + 1), columns), before + count
+        return RowBlock([], range(before + 1, before + count + 1), fields), before + count
 
     def _block(self, text: str, before: int) -> tuple[RowBlock, int]:
         """Rows of a text of whole rows; `before` is how many lines came before it."""

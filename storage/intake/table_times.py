@@ -1,4 +1,4 @@
-"""Times of a table, one by one and a block at once. Both ways give the same instants; a test holds them equal."""
+"""Times of a table one by one, and which ways of writing them fit. `time_columns` reads a block at once."""
 
 from __future__ import annotations
 
@@ -7,12 +7,8 @@ from collections.abc import Sequence
 from datetime import UTC, datetime
 from functools import lru_cache
 
-import numpy as np
-from numpy.typing import NDArray
-
-from core.record.instant import HOUR, Instant, from_datetime
+from core.record.instant import Instant
 from core.record.message import RecordError, refuse
-from core.record.samples import Flags, Times
 from storage.intake.mapping import TimeUse
 from storage.intake.wall_times import in_range, instant_of
 
@@ -25,7 +21,7 @@ _YEAR = r"(?P<year>\d{4}|\d{2})"
 _MONTH = r"(?:(?P<month>\d{1,2})|(?P<name>[A-Za-z]{3,9}))"
 _DAY = r"(?P<day>\d{1,2})"
 _SEP = r"[./ -]"
-_PATTERNS = {
+PATTERNS = {
     "iso": re.compile(r"(?P<year>\d{4})-(?P<month>\d{2})-(?P<day>\d{2})" + _GAP + _CLOCK),
     "ymd": re.compile(r"(?P<year>\d{4})[./-](?P<month>\d{1,2})[./-](?P<day>\d{1,2})" + _GAP + _CLOCK),
     "dmy": re.compile(_DAY + _SEP + _MONTH + _SEP + _YEAR + _GAP + _CLOCK),
@@ -53,7 +49,7 @@ def read_time(text: str, use: TimeUse) -> Instant:
     text = text.strip()
     if use.order.startswith("epoch"):
         return _since_1970(text, use)
-    return instant_of(_moment(text, use.order), use.zone, text, use.repeated)
+    return instant_of(moment_of(text, use.order), use.zone, text, use.repeated)
 
 
 def _since_1970(text: str, use: TimeUse) -> Instant:
@@ -66,9 +62,9 @@ def _since_1970(text: str, use: TimeUse) -> Instant:
 
 
 @lru_cache(maxsize=2048)
-def _moment(text: str, order: str) -> datetime:
+def moment_of(text: str, order: str) -> datetime:
     """The moment a text states, with its offset where it has one."""
-    pattern = _PATTERNS.get(order)
+    pattern = PATTERNS.get(order)
     found = pattern.fullmatch(text) if pattern is not None else None
     if found is None:
         if _DATE_ONLY.fullmatch(text):
@@ -119,7 +115,7 @@ def fitting_orders(texts: Sequence[str]) -> tuple[str, ...]:
 
 def _fits(text: str, order: str) -> bool:
     try:
-        _moment(text.strip(), order)
+        moment_of(text.strip(), order)
     except RecordError:
         return False
     return True
@@ -134,122 +130,6 @@ def all_have_offsets(texts: Sequence[str], order: str) -> bool:
 def has_offset(text: str, order: str) -> bool:
     """Whether a time carries its own offset."""
     try:
-        return _moment(text.strip(), order).tzinfo is not None
+        return moment_of(text.strip(), order).tzinfo is not None
     except RecordError:
         return False
-
-
-def read_times(texts: list[str], use: TimeUse) -> tuple[Times, Flags]:
-    """Instants of many times, shape (n,), and which of them could be read at once; the rest need a slower look.
-
-    Times written alike (same length, same marks) are read on arrays: digits by place, the zone by the hour.
-    """
-    n = len(texts)
-    none = np.zeros(n, np.int64), np.zeros(n, np.bool_)
-    plan = _plan(texts[0].strip(), use.order) if texts else None
-    if plan is None:
-        return none
-    joined = "".join(texts)
-    if not joined.isascii() or len(joined) != n * plan.length:
-        return none
-    data = np.frombuffer(joined.encode("ascii"), np.uint8).reshape(n, plan.length)
-    good = np.array([len(x) == plan.length for x in texts]) if n else np.zeros(0, np.bool_)
-    if not good.all():
-        return none
-    digits = data[:, plan.digits].astype(np.int64) - 48
-    good &= ((digits >= 0) & (digits <= 9)).all(axis=1) & (data[:, plan.marks] == plan.mark_bytes).all(axis=1)
-    wall, fits = _wall(data, plan)
-    good &= fits
-    if plan.offset is not None:
-        return wall - plan.offset, good
-    return _zoned(wall, good, use)
-
-
-class _Plan:
-    """Where the parts of a time stand in a text of one fixed form."""
-
-    def __init__(self, sample: str, spans: dict[str, tuple[int, int]], offset: int | None) -> None:
-        self.length = len(sample)
-        self.spans = spans
-        self.offset = offset
-        taken = {i for start, end in spans.values() for i in range(start, end)}
-        self.digits = sorted(taken)
-        self.marks = [i for i in range(len(sample)) if i not in taken]
-        self.mark_bytes = np.array([ord(sample[i]) for i in self.marks], np.uint8)
-
-
-@lru_cache(maxsize=64)
-def _plan(sample: str, order: str) -> _Plan | None:
-    pattern = _PATTERNS.get(order)
-    found = pattern.fullmatch(sample) if pattern is not None and sample.isascii() else None
-    if found is None or found["half"] or found.groupdict().get("name"):
-        return None
-    names = ("year", "month", "day", "hour", "minute", "second", "fraction")
-    spans = {name: found.span(name) for name in names if found[name] is not None}
-    if spans["year"][1] - spans["year"][0] != 4 or found["month"] is None:
-        return None
-    offset: int | None = None
-    if found["offset"]:
-        try:
-            moment = _moment(sample, order)
-        except RecordError:
-            return None
-        delta = moment.utcoffset()
-        offset = int(delta.total_seconds()) * 1_000_000 if delta is not None else None
-    return _Plan(sample, spans, offset)
-
-
-def _wall(data: NDArray[np.uint8], plan: _Plan) -> tuple[Times, Flags]:
-    """Microseconds on the wall clock as if it were UTC, and which of them are real dates and times."""
-
-    def part(name: str) -> NDArray[np.int64]:
-        if name not in plan.spans:
-            return np.zeros(data.shape[0], np.int64)
-        start, end = plan.spans[name]
-        value = np.zeros(data.shape[0], np.int64)
-        for place in range(start, end):
-            value = value * 10 + (data[:, place].astype(np.int64) - 48)
-        return value
-
-    year, month, day = part("year"), part("month"), part("day")
-    hour, minute, second = part("hour"), part("minute"), part("second")
-    good = (year >= 1990) & (year <= 2099) & (month >= 1) & (month <= 12) & (day >= 1) & (day <= 31)
-    good &= (hour < 24) & (minute < 60) & (second < 60)
-    months = np.where(good, (year - 1970) * 12 + month - 1, 0).astype("datetime64[M]")
-    days = months.astype("datetime64[D]") + np.where(good, day - 1, 0)
-    good &= days.astype("datetime64[M]") == months
-    digits = plan.spans.get("fraction", (0, 0))
-    scale = 10 ** (6 - (digits[1] - digits[0]))
-    micro = part("fraction") * scale if scale >= 1 else part("fraction") // round(1 / scale)
-    seconds = days.astype(np.int64) * 86_400 + hour * 3_600 + minute * 60 + second
-    return seconds * 1_000_000 + micro, good
-
-
-def _zoned(wall: Times, good: Flags, use: TimeUse) -> tuple[Times, Flags]:
-    """Wall times to instants: the offset is the same within an hour, but for hours of a change of the clock."""
-    if not use.zone:
-        return wall, np.zeros_like(good)
-    hours, inverse = np.unique(np.where(good, wall // HOUR, 0), return_inverse=True)
-    shifts = np.zeros(hours.size, np.int64)
-    plain = np.zeros(hours.size, np.bool_)
-    for i, hour in enumerate(hours.tolist()):
-        shift = _hour_shift(hour, use.zone)
-        if shift is not None:
-            shifts[i], plain[i] = shift, True
-    return wall - shifts[inverse], good & plain[inverse]
-
-
-@lru_cache(maxsize=4096)
-def _hour_shift(hour: int, zone: str) -> int | None:
-    """Wall clock less UTC in microseconds, where the whole hour has one; None in an hour of a change."""
-    from datetime import timedelta
-
-    start = datetime(1970, 1, 1) + timedelta(hours=hour)  # noqa: DTZ001
-    try:
-        first = instant_of(start, zone, "")
-        last = instant_of(start + timedelta(minutes=59), zone, "")
-    except RecordError:
-        return None
-    if last - first != 59 * 60_000_000:
-        return None
-    return from_datetime(start.replace(tzinfo=UTC)) - first

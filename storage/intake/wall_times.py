@@ -9,7 +9,7 @@ from core.record.instant import MINUTE, Instant, from_datetime, parse
 from core.record.local_time import candidates
 from core.record.message import refuse
 
-_EARLIEST, _LATEST = parse("1990-01-01T00:00:00Z"), parse("2099-12-31T23:59:59Z")
+EARLIEST, LATEST = parse("1990-01-01T00:00:00Z"), parse("2099-12-31T23:59:59Z")
 
 
 def in_range(at: Instant, shown: str) -> Instant:
@@ -18,7 +18,7 @@ def in_range(at: Instant, shown: str) -> Instant:
     Raises:
         RecordError: `instant.out_of_range`.
     """
-    if not _EARLIEST <= at <= _LATEST:
+    if not EARLIEST <= at <= LATEST:
         raise refuse("instant.out_of_range", value=shown[:80])
     return at
 

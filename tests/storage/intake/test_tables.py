@@ -14,7 +14,9 @@ from hypothesis import strategies as st
 
 from core.record.instant import iso, parse
 from core.record.message import RecordError
+from core.record.samples import Flags, Times
 from storage.intake.batch import take_in
+from storage.intake.byte_fields import fields_of
 from storage.intake.findings import Intake
 from storage.intake.mapping import (
     ColumnUse,
@@ -34,7 +36,8 @@ from storage.intake.table import open_table
 from storage.intake.table_preview import preview
 from storage.intake.table_reading import read_table
 from storage.intake.table_rows import Answers
-from storage.intake.table_times import fitting_orders, read_time, read_times
+from storage.intake.table_times import fitting_orders, read_time
+from storage.intake.time_columns import read_times
 from storage.store import Store
 from tests.storage.conftest import NOW
 from tests.support.spreadsheets import date, ods_rows, sheet_xml, write_ods, write_xlsx
@@ -285,6 +288,10 @@ def test_the_preview_shows_what_will_be_recorded_and_what_is_open(write: Write) 
 # times
 
 
+def at_once(texts: list[str], use: TimeUse) -> tuple[Times, Flags]:
+    return read_times(fields_of([[x] for x in texts]), 0, None, np.arange(len(texts)), use)
+
+
 @given(
     st.datetimes(min_value=datetime(1995, 1, 1), max_value=datetime(2090, 1, 1)),  # noqa: DTZ001
     st.sampled_from(["Europe/Oslo", "America/New_York", "Asia/Kolkata", "Australia/Lord_Howe", "UTC"]),
@@ -295,7 +302,7 @@ def test_times_at_once_are_times_one_by_one(moment, zone, order, fraction) -> No
     form = {"iso": "%Y-%m-%d", "dmy": "%d.%m.%Y", "mdy": "%m/%d/%Y", "ymd": "%Y/%m/%d"}[order]
     texts = [moment.strftime(f"{form} %H:%M:%S{fraction}")] * 3
     use = TimeUse("t", order=order, zone=zone)
-    t, good = read_times(texts, use)
+    t, good = at_once(texts, use)
     try:
         expected = read_time(texts[0], use)
     except RecordError:
@@ -307,7 +314,7 @@ def test_times_at_once_are_times_one_by_one(moment, zone, order, fraction) -> No
 def test_hours_around_a_change_of_the_clock() -> None:
     texts = ["2025-10-26 01:59:59", "2025-10-26 02:30:00", "2025-10-26 03:00:00", "2025-03-30 02:30:00"]
     use = TimeUse("t", order="iso", zone=ZONE)
-    t, good = read_times(texts, use)
+    t, good = at_once(texts, use)
     assert good.tolist() == [True, False, True, False]
     assert np.array_equal(t[good], [parse("2025-10-25T23:59:59Z"), parse("2025-10-26T02:00:00Z")])
     for text, key in ((texts[1], "time.repeated"), (texts[3], "time.skipped")):
