@@ -14,6 +14,7 @@ import hmac
 import json
 import os
 import secrets
+import sys
 import unicodedata
 from dataclasses import dataclass, field
 from hashlib import sha256
@@ -201,9 +202,22 @@ def _code(secret: str) -> str:
     return plain.translate(str.maketrans("OIL", "011"))
 
 
+def forbid_core_dumps() -> None:
+    """From now on a crash of this process writes no image of its memory, which holds the key, to the disk.
+
+    Python keeps copies of bytes that nobody can wipe, so the memory of a running program counts as readable by who
+    may read it; the disk does not. Windows keeps such images only where an administrator asks for them.
+    """
+    if sys.platform != "win32":
+        import resource
+
+        resource.setrlimit(resource.RLIMIT_CORE, (0, 0))
+
+
 def _derived(secret: str, kind: str, salt: bytes, cost: Cost) -> bytes:
     from cryptography.hazmat.primitives.kdf.argon2 import Argon2id
 
+    forbid_core_dumps()
     material = _code(secret).encode() if kind == RECOVERY else _normal(secret)
     kdf = Argon2id(salt=salt, length=KEY_BYTES, iterations=cost.passes, lanes=cost.lanes, memory_cost=cost.memory_kib)
     return kdf.derive(material)

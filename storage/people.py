@@ -35,6 +35,8 @@ FREE_TRIES, MOST_WAIT = 3, 300
 """Wrong tries before the next must wait, and the longest wait in seconds: a ward is never locked out for long."""
 _MANAGED = (ADDED, PIN_SET, ROLE_SET, RETIRED)
 _TRIES = 20
+_PATIENCE = 2.0
+"""Seconds for which a try waits for another window to end its writing, so that it is kept."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,6 +66,10 @@ class Person:
     def is_lead(self) -> bool:
         """Whether they may change policy and people, restore and remove."""
         return self.role == LEAD and not self.retired
+
+
+_unkept: dict[tuple[str, str], list[PersonEvent]] = {}
+"""Tries at stores that could keep no event, by store and person, for as long as the program runs."""
 
 
 def people(events: Iterable[PersonEvent]) -> dict[str, Person]:
@@ -174,19 +180,24 @@ def active(known: Mapping[str, Person], initials: str) -> Person:
 
 
 def sign_in(store: Store, initials: str, pin: str, now: Instant) -> Person:
-    """Check a PIN; the try is an event, right or wrong. A store open for reading alone keeps no event.
+    """Check a PIN; the try is an event, right or wrong. A store that takes no writing keeps no event: then this
+    program remembers the try, so that nobody tries on for want of one.
 
     Raises:
         RecordError: `people.unknown`, `people.wait`, `people.wrong_pin`.
     """
     person = active(of_store(store), initials)
     tries = store.person_events((SIGNED_IN, TURNED_AWAY), person=person.initials, newest=_TRIES)
-    left = seconds_to_wait(tries, now)
+    unkept = _unkept.setdefault((store.store_id, person.initials), [])
+    left = seconds_to_wait(sorted([*tries, *unkept], key=lambda e: e.recorded_at), now)
     if left:
         raise refuse("people.wait", person=person.initials, seconds=left)
     right = fits(person.pin, pin)
-    if store.takes_writing():
-        store.record_event(SIGNED_IN if right else TURNED_AWAY, person=person.initials, now=now)
+    event = SIGNED_IN if right else TURNED_AWAY
+    if store.takes_writing(_PATIENCE):
+        store.record_event(event, person=person.initials, now=now)
+    else:
+        unkept.append(PersonEvent(0, person.initials, event, "", person.initials, now))
     if not right:
         raise refuse("people.wrong_pin", person=person.initials)
     return person

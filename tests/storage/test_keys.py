@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import subprocess
 import sys
 from collections.abc import Callable
 from pathlib import Path
@@ -240,3 +241,15 @@ def test_only_the_owner_may_read_a_store_and_its_backup(make_store: Callable[...
         "new.luff.key",
     )
     assert {name: oct((tmp_path / name).stat().st_mode & 0o777) for name in names} == dict.fromkeys(names, "0o600")
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="images of a crashed program as POSIX makes them")
+def test_a_program_that_holds_a_key_leaves_no_image_of_its_memory(make_store: Callable[..., Store]) -> None:
+    store = make_store(encrypted=True)
+    code = (
+        "import resource, sys; from storage.store import Store; s = Store.open(sys.argv[1], passphrase=sys.argv[2]); "
+        "print(resource.getrlimit(resource.RLIMIT_CORE))"
+    )
+    command = [sys.executable, "-c", code, str(store.path), PASSPHRASE]
+    done = subprocess.run(command, capture_output=True, text=True, cwd=Path(__file__).parents[2], check=True)
+    assert done.stdout.strip() == "(0, 0)"

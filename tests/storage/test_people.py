@@ -3,7 +3,10 @@
 from __future__ import annotations
 
 import json
+import subprocess
+import sys
 from collections.abc import Callable
+from pathlib import Path
 
 import pytest
 
@@ -21,6 +24,7 @@ PIN, OTHER = "2580", "739146"
 @pytest.fixture(autouse=True)
 def cheap(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(people.hashed, "__defaults__", (Cost(64, 1, 1),))
+    monkeypatch.setattr(people, "_unkept", {})
 
 
 @pytest.fixture
@@ -129,6 +133,33 @@ def test_a_store_open_for_reading_alone_signs_in_without_an_event(ward: Store) -
     with Store.open(ward.path, read_only=True) as reader:
         assert people.sign_in(reader, "AB", PIN, NOW).initials == "AB"
     assert ward.head() == head
+
+
+def test_wrong_tries_wait_though_the_store_can_keep_none_of_them(ward: Store) -> None:
+    with Store.open(ward.path, read_only=True) as reader:
+        for _ in range(people.FREE_TRIES):
+            assert refused(lambda: people.sign_in(reader, "AB", "975310", NOW)) == "people.wrong_pin"
+        assert refused(lambda: people.sign_in(reader, "AB", PIN, NOW + SECOND)) == "people.wait"
+        assert refused(lambda: people.sign_in(ward, "AB", PIN, NOW + SECOND)) == "people.wait"
+        assert people.sign_in(reader, "AB", PIN, NOW + 6 * SECOND).is_lead
+        assert people.sign_in(reader, "AB", PIN, NOW + 7 * SECOND).is_lead
+    assert people.sign_in(ward, "AB", PIN, NOW + 8 * SECOND).is_lead
+
+
+def test_wrong_tries_wait_over_a_restart(ward: Store) -> None:
+    """Another process, as after a restart, finds the tries in the chain."""
+    for _ in range(people.FREE_TRIES):
+        refused(lambda: people.sign_in(ward, "CD", "975310", NOW))
+    ward.close()
+    code = (
+        "import sys; from storage import people; from storage.store import Store\n"
+        "with Store.open(sys.argv[1]) as store:\n"
+        "    try: people.sign_in(store, 'CD', sys.argv[2], int(sys.argv[3]))\n"
+        "    except Exception as error: print(error.message.key)\n"
+    )
+    command = [sys.executable, "-c", code, str(ward.path), OTHER, str(NOW + SECOND)]
+    done = subprocess.run(command, capture_output=True, text=True, cwd=Path(__file__).parents[2], check=True)
+    assert done.stdout.strip() == "people.wait"
 
 
 def test_people_go_with_a_backup(make_store: Callable[..., Store]) -> None:
