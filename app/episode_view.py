@@ -157,7 +157,7 @@ class EpisodeView(QWidget):
     def show_episode(self, on: EpisodeOnScreen, now: Instant) -> None:
         """Show an episode; the same one with new values keeps its window and its crosshair."""
         same = self._on is not None and self._on.figures.episode == on.figures.episode
-        old_spec, window, instant = self.stack.spec, self.stack.window, self.stack.instant
+        old_spec, window, instant = self.stack.spec, self.stack.in_view, self.stack.instant
         at_end = old_spec is not None and window[1] >= old_spec.end
         self._on, self._now = on, now
         self.stack.set_spec(stack_of(on, now))
@@ -236,7 +236,7 @@ class EpisodeView(QWidget):
         here = self.stack.instant if self.stack.instant is not None else self._on.course.until
         later = [a for a in anchors if a > here] if step > 0 else [a for a in reversed(anchors) if a < here]
         if later:
-            start, end = self.stack.window
+            start, end = self.stack.in_view
             if not start <= later[0] <= end:
                 self.stack.go_to(later[0])
             self.stack.point_at(later[0])
@@ -246,7 +246,7 @@ class EpisodeView(QWidget):
         at = self.stack.instant
         if self._on is None or at is None or not self._on.figures.gases:
             return None
-        start, end = self.stack.window
+        start, end = self.stack.in_view
         near = min(self._on.figures.gases, key=lambda g: abs(g.at - at))
         return near if abs(near.at - at) <= max(2 * MINUTE, (end - start) // 100) else None
 

@@ -39,18 +39,27 @@ def write_picture(picture: Picture, theme: Theme, path: Path) -> None:
         ValueError: the suffix is none of `SUFFIXES`.
         OSError: the file cannot be written; what was there before is gone only when the new one is whole.
     """
-    from app.chart.render import image_of, pdf_of, svg_of
+    from app.whole_file import write_whole
+
+    write_whole(path, picture_data(picture, theme, path.suffix.lower()))
+
+
+def picture_data(picture: Picture, theme: Theme, suffix: str) -> bytes:
+    """A picture as bytes: Qt only warns where a disk is full, and would leave half a file. Needs a QApplication.
+
+    Raises:
+        ValueError: the suffix is none of `SUFFIXES`.
+    """
+    from app.chart.render import image_of, pdf_data, png_data, svg_data
 
     width, height = picture.size
-    suffix = path.suffix.lower()
     if suffix not in SUFFIXES:
-        raise ValueError(f"'{path.name}' must end in {', '.join(SUFFIXES)}")
+        raise ValueError(f"'{suffix}' is none of {', '.join(SUFFIXES)}")
     if suffix == ".svg":
-        svg_of(picture.spec, theme, width, height, path, picture.title)
-    elif suffix == ".pdf":
-        pdf_of(picture.spec, theme, width, height, path, picture.title)
-    elif not image_of(picture.spec, theme, width, height, SHARP).save(str(path)):
-        raise OSError(5, "the picture could not be written", str(path))
+        return svg_data(picture.spec, theme, width, height, picture.title)
+    if suffix == ".pdf":
+        return pdf_data(picture.spec, theme, width, height, picture.title)
+    return png_data(image_of(picture.spec, theme, width, height, SHARP))
 
 
 def picture_of_page(pages: Pages, theme: Theme) -> Picture | None:
@@ -60,7 +69,7 @@ def picture_of_page(pages: Pages, theme: Theme) -> Picture | None:
         lanes = pages.ward.lanes.spec
         return Picture(lanes, lanes.name, (SIZE[0], max(240, 90 + 62 * len(lanes.lanes))))
     if name == "episode" and pages.episode.stack.spec is not None:
-        spec = replace(pages.episode.stack.spec, window=pages.episode.stack.window)
+        spec = replace(pages.episode.stack.spec, window=pages.episode.stack.in_view)
         return Picture(spec, spec.name)
     if name == "map" and (map_spec := pages.map.picture_spec()) is not None:
         return Picture(map_spec, map_spec.name, (900, 760))

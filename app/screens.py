@@ -19,6 +19,7 @@ from app.episode_view import EpisodeView
 from app.forms.samples import fill
 from app.preferences import Preferences
 from app.runner import Runner
+from app.screen_dialogs import dialogs, on_show
 from app.session import Session, SessionModel
 from app.start import application
 from app.theme import THEMES, apply_theme
@@ -29,13 +30,6 @@ SIZES: Final = ((1280, 800), (1920, 1080))
 LINE: Final = "20m ago 22/6 32 rr 27"
 BACK_MIN: Final = 120
 """How far the picture of a look back looks back."""
-DIALOGS: Final = (
-    ("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
-    ("policy", "policy"),
-    ("table", "table"), ("help", "help"), ("about", "about"),
-    ("settings-form", "settings_form"), ("gas-form", "gas_form"), ("vitals-form", "vitals_form"),
-    ("end-support", "end_episode"), ("problem-report", "report_problem"),
-)  # fmt: skip
 _PATIENCE_S: Final = 60.0
 
 
@@ -108,7 +102,7 @@ def _screens(window: MainWindow, session: Session, opener: Callable[[], Store]) 
     _settle(window)
     yield "episode", window
     pages = window.opened.pages
-    start, end = pages.episode.stack.window
+    start, end = pages.episode.stack.in_view
     pages.episode.stack.point_at(start + (end - start) * 2 // 3)
     _pass_events()
     yield "episode-crosshair", window
@@ -122,6 +116,15 @@ def _screens(window: MainWindow, session: Session, opener: Callable[[], Store]) 
     window.doers.review.step(-BACK_MIN)
     _settle(window)
     yield "as-known", window
+    window.actions_by_key["came_later"].trigger()
+    _settle(window)
+    later = on_show(window)
+    if later is not None:
+        yield "came-later", later
+        _pass_events()
+    window.actions_by_key["lock"].trigger()
+    _settle(window)
+    yield "locked", window
 
 
 def _figures(window: MainWindow, episode: EpisodeView) -> Iterator[tuple[str, QWidget]]:
@@ -162,7 +165,10 @@ def _figures(window: MainWindow, episode: EpisodeView) -> Iterator[tuple[str, QW
 
 
 def _dialog(window: MainWindow) -> QWidget:
-    return QApplication.activeModalWidget() or next(w for w in window.findChildren(QDialog) if w.isVisible())
+    found = on_show(window)
+    if found is None:
+        raise RuntimeError("the dialog did not come up")
+    return found
 
 
 def _strip(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
@@ -176,15 +182,9 @@ def _strip(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
 
 
 def _dialogs(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
-    for name, key in DIALOGS:
-        window.actions_by_key[key].trigger()
-        _settle(window)
-        dialog = QApplication.activeModalWidget() or next(
-            (w for w in window.findChildren(QDialog) if w.isVisible()), None
-        )
-        if dialog is not None:
-            if isinstance(dialog, QDialog):
-                fill(dialog)
+    with tempfile.TemporaryDirectory(prefix="luffmark-screens-") as scratch:
+        for name, dialog in dialogs(window, Path(scratch), partial(_settle, window)):
+            fill(dialog)
             _settle(window)
             yield name, dialog
             _pass_events()

@@ -95,7 +95,7 @@ def table_of_page(window: MainWindow) -> Table | None:
     if pages.name == "episode" and pages.episode.stack.spec is not None:
         from app.episode.stack_table import table_of_stack
 
-        return table_of_stack(pages.episode.stack.spec, pages.episode.stack.window)
+        return table_of_stack(pages.episode.stack.spec, pages.episode.stack.in_view)
     if pages.name == "compare" and pages.compare.chart.comparison is not None:
         return table_of_comparison(pages.compare.chart.comparison)
     if pages.name == "map":

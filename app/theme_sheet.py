@@ -163,6 +163,8 @@ QProgressBar {{
 QProgressBar::chunk {{ background: {accent}; border-radius: {g1}px; }}
 
 QScrollArea {{ border: 0; background: transparent; }}
+QScrollArea[keys="true"] {{ border: 2px solid transparent; border-radius: {radius}px; }}
+QScrollArea[keys="true"]:focus {{ border: 2px solid {accent}; }}
 QScrollBar {{ background: transparent; border: 0; margin: 0; }}
 QScrollBar:vertical {{ width: {g3}px; }}
 QScrollBar:horizontal {{ height: {g3}px; }}

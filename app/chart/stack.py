@@ -180,8 +180,8 @@ class PanelStack(pg.GraphicsView):  # type: ignore[misc]  # pyqtgraph has no typ
     # the window of time
 
     @property
-    def window(self) -> tuple[int, int]:
-        """Start and end of what is in view."""
+    def in_view(self) -> tuple[int, int]:
+        """Start and end of the time in view (`window` would hide Qt's own method)."""
         return self._window
 
     def set_window(self, start: int, end: int) -> None:

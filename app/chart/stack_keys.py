@@ -30,7 +30,7 @@ def key_pressed(stack: PanelStack, event: QKeyEvent) -> bool:
 
 
 def _of_window(stack: PanelStack, event: QKeyEvent) -> bool:
-    keys, (start, end) = Qt.Key, stack.window
+    keys, (start, end) = Qt.Key, stack.in_view
     step = (end - start) / MICROSECONDS / (2 if event.modifiers() & Qt.KeyboardModifier.ShiftModifier else 8)
     deeds: dict[int, Callable[[], None]] = {
         keys.Key_Left: lambda: stack.pan_seconds(-step),
@@ -61,7 +61,7 @@ def _of_crosshair(stack: PanelStack, event: QKeyEvent) -> bool:
 
 
 def _step(stack: PanelStack, way: int) -> None:
-    start, end = stack.window
+    start, end = stack.in_view
     inside = stack.instant is not None and start <= stack.instant <= end
     at = stack.instant if inside and stack.instant is not None else (start + end) // 2
     stack.point_at(min(max(at + way * (end - start) // _CROSSHAIR_STEPS, start), end))

@@ -116,6 +116,7 @@ class MappingDialog(FittedDialog):
         side = QScrollArea()
         side.setWidget(self.answers)
         side.setWidgetResizable(True)
+        side.setFocusPolicy(Qt.FocusPolicy.NoFocus)  # Tab goes to what is inside and brings it into view
         side.setFixedWidth(self._theme.px(400))
         halves.addWidget(self.columns, 1)
         halves.addWidget(side)

@@ -1,11 +1,11 @@
-"""Everything can be heard: a name for every control of pages and dialogs, a table and a summary for every chart."""
+"""Everything can be heard: a name for every control of the pages, a table and a summary for every chart. Dialogs are
+walked by `test_every_dialog`."""
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QAbstractButton, QAbstractScrollArea, QComboBox, QDialog, QLabel, QWidget
+from PySide6.QtWidgets import QAbstractButton, QAbstractScrollArea, QComboBox, QLabel, QWidget
 
 from app.dialogs.table import TableDialog
-from app.screens import DIALOGS
 from tests.support.open_window import make_store, open_window, settled
 
 PAGES = ("ward", "episode", "map", "compare", "handover", "statistics")
@@ -13,7 +13,6 @@ CHARTS = {
     "ward": lambda p: p.ward.lanes, "episode": lambda p: p.episode.stack, "map": lambda p: p.map.map,
     "compare": lambda p: p.compare.chart,
 }  # fmt: skip
-OTHER_DIALOGS = (("find", "find_action"), ("export", "export_values"), ("close", "close_handover"))
 
 
 @pytest.fixture
@@ -55,18 +54,6 @@ def test_every_control_of_a_page_has_a_name(qtbot, window, page):
     window.show_page(page)
     settled(qtbot, window)
     assert unspoken(window.pages.page(page)) == []
-
-
-@pytest.mark.parametrize("key", [key for _, key in (*DIALOGS, *OTHER_DIALOGS) if key != "find_action"])
-def test_every_control_of_a_dialog_has_a_name(qtbot, window, key):
-    window.actions_by_key[key].trigger()
-    settled(qtbot, window)
-    dialog = next((d for d in window.findChildren(QDialog) if d.isVisible()), None)
-    if dialog is None:
-        assert window.pages.name != "ward"  # it is a page of its own
-        return
-    assert unspoken(dialog) == []
-    dialog.reject()
 
 
 @pytest.mark.parametrize("page", CHARTS)

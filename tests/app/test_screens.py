@@ -9,7 +9,11 @@ EXPECTED = {
     "first", "ward", "strip", "episode", "episode-crosshair", "compare", "handover", "explain", "panels",
     "figures-folded", "figures-gas", "figures-oxygenation", "figures-breathing", "explain-doubt", "explain-none",
     "explain-class", "explain-score", "new-episode", "correct", "map", "statistics", "as-known", "table", "help",
-    "about", "policy", "settings-form", "gas-form", "vitals-form", "end-support", "problem-report",
+    "about", "policy", "settings-form", "gas-form", "vitals-form", "facts-form", "end-support", "settle-flag",
+    "close-due", "problem-report", "export", "files-taken", "people", "archive", "backups", "restore", "salvage",
+    "key-file", "close-handover", "closed-handovers", "print-preview", "take-in", "mapping", "policy-file",
+    "find-action", "sign-in", "first-lead", "pin-by-code", "new-store", "open-store", "change-passphrase",
+    "recovery-code", "came-later", "locked",
 }  # fmt: skip
 
 

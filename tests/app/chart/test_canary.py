@@ -90,4 +90,4 @@ def test_200_new_episodes_leave_memory_steady(stack, stack_spec, qapp):
     before = resident()
     change(200)
     assert resident() - before < 15_000_000
-    assert stack.window[0] == START
+    assert stack.in_view[0] == START

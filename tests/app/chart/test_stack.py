@@ -58,39 +58,39 @@ def test_one_instant_stands_in_one_column_of_every_row(stack):
 def test_arrows_pan(stack, qtbot, key, modifiers, shift):
     stack.set_window(at(200), at(280))
     qtbot.keyClick(stack, key, modifiers)
-    assert stack.window == (at(200 + 80 * shift), at(280 + 80 * shift))
+    assert stack.in_view == (at(200 + 80 * shift), at(280 + 80 * shift))
 
 
 def test_plus_and_minus_zoom_about_the_middle(stack, qtbot):
     stack.set_window(at(200), at(280))
     qtbot.keyClick(stack, Qt.Key.Key_Plus)
-    assert stack.window == (at(220), at(260))
+    assert stack.in_view == (at(220), at(260))
     qtbot.keyClick(stack, Qt.Key.Key_Minus)
-    assert stack.window == (at(200), at(280))
+    assert stack.in_view == (at(200), at(280))
 
 
 def test_home_end_and_all(stack, qtbot):
     stack.set_window(at(200), at(300))
     qtbot.keyClick(stack, Qt.Key.Key_Home)
-    assert stack.window == (at(-2), at(98))
+    assert stack.in_view == (at(-2), at(98))
     qtbot.keyClick(stack, Qt.Key.Key_End)
-    assert stack.window == (at(382), at(482))
+    assert stack.in_view == (at(382), at(482))
     qtbot.keyClick(stack, Qt.Key.Key_0)
-    assert stack.window == (START, at(480))
+    assert stack.in_view == (START, at(480))
 
 
 def test_other_keys_are_left_to_the_window(stack, qtbot):
-    before = stack.window
+    before = stack.in_view
     qtbot.keyClick(stack, Qt.Key.Key_F1)
     qtbot.keyClick(stack, Qt.Key.Key_Tab)
-    assert stack.window == before
+    assert stack.in_view == before
 
 
 def test_the_wheel_zooms_in_time_only_and_keeps_the_instant_under_it(stack):
     heights = [row.view.viewRange()[1] for row in stack.rows]
     stack.set_window(at(100), at(300))
     wheel(stack, 1)
-    start, end = stack.window
+    start, end = stack.in_view
     assert end - start == pytest.approx(0.8 * 200 * 60e6, rel=1e-6)
     assert (start + end) / 2 == pytest.approx(at(200), abs=60e6)
     assert [row.view.viewRange()[1] for row in stack.rows] == heights
@@ -99,7 +99,7 @@ def test_the_wheel_zooms_in_time_only_and_keeps_the_instant_under_it(stack):
 def test_wheel_with_shift_pans(stack):
     stack.set_window(at(100), at(300))
     wheel(stack, -1, Qt.KeyboardModifier.ShiftModifier)
-    assert stack.window == (at(120), at(320))
+    assert stack.in_view == (at(120), at(320))
 
 
 def test_dragging_pans_and_leaves_heights_alone(stack, qtbot):
@@ -111,7 +111,7 @@ def test_dragging_pans_and_leaves_heights_alone(stack, qtbot):
         qtbot.mouseMove(port, middle + QPoint(dx, 15))
         qtbot.wait(5)
     qtbot.mouseRelease(port, Qt.MouseButton.LeftButton, pos=middle + QPoint(100, 15))
-    start, end = stack.window
+    start, end = stack.in_view
     moved = (at(100) - start) / (end - start) * stack.rows[1].view.rect().width()
     assert moved == pytest.approx(100, abs=25)
     assert [row.view.viewRange()[1] for row in stack.rows] == heights
@@ -119,12 +119,12 @@ def test_dragging_pans_and_leaves_heights_alone(stack, qtbot):
 
 def test_the_window_stays_inside_the_episode(stack):
     stack.set_window(at(-5000), at(-4000))
-    low = stack.window[0]
+    low = stack.in_view[0]
     stack.set_window(at(0), at(0) + 1)
-    assert stack.window[1] - stack.window[0] == LEAST_SPAN
+    assert stack.in_view[1] - stack.in_view[0] == LEAST_SPAN
     stack.set_window(at(-(10**6)), at(10**6))
-    assert stack.window[0] == low
-    assert stack.window[1] - stack.window[0] < 1.1 * (at(480) - START)
+    assert stack.in_view[0] == low
+    assert stack.in_view[1] - stack.in_view[0] < 1.1 * (at(480) - START)
 
 
 def test_the_crosshair_says_where_it_is(stack, qtbot):
@@ -154,7 +154,7 @@ def test_keys_move_the_crosshair_and_open_what_is_under_it(stack, qtbot):
     assert caught.args[0].word == "better"
     qtbot.keyClick(stack, Qt.Key.Key_Escape)
     assert stack.instant is None
-    assert stack.window == (at(0), at(100))
+    assert stack.in_view == (at(0), at(100))
 
 
 def test_settings_in_force_at_an_instant(stack):
@@ -198,7 +198,7 @@ def test_a_new_theme_keeps_the_window(stack):
     stack.set_window(at(100), at(200))
     before = stack.grab().toImage()
     stack.set_theme(DARK)
-    assert stack.window == (at(100), at(200))
+    assert stack.in_view == (at(100), at(200))
     assert stack.grab().toImage() != before
 
 
