@@ -1,30 +1,22 @@
-"""The cautions, word for word the same at first start, in About and on every printed sheet."""
+"""The cautions in the reader's language; the text is that of the command line, of print and of pictures."""
 
 from __future__ import annotations
 
 from PySide6.QtCore import QCoreApplication
+
+from app.caution_texts import CAUTIONS, IN_SIGHT
 
 translate = QCoreApplication.translate
 
 
 def cautions() -> tuple[str, ...]:
     """The cautions, one sentence or two each."""
-    return (
-        translate(
-            "cautions",
-            "This tool supports clinical judgement and never replaces it. A qualified person decides.",
-        ),
-        translate(
-            "cautions",
-            "It is no alarm and no monitor. It knows only what was logged, and nothing before it was logged.",
-        ),
-        translate(
-            "cautions",
-            "Local policy and licensed practice come first. Thresholds marked 'from memory' or "
-            "'common practice' are to be confirmed locally before anyone relies on them.",
-        ),
-        translate("cautions", "A ward settles its regulatory position before it relies on flags."),
-    )
+    return tuple(translate("cautions", text) for text in CAUTIONS)
+
+
+def caution_in_sight() -> str:
+    """The line that stands in the window on every page."""
+    return translate("cautions", IN_SIGHT)
 
 
 def intended_use() -> str:

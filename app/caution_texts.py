@@ -1,0 +1,20 @@
+"""The cautions as one text for the window, the command line, every printed sheet and every picture.
+
+Plain strings without Qt: the command line and the print need no translator. `app.cautions` translates them.
+"""
+
+from __future__ import annotations
+
+from typing import Final
+
+CAUTIONS: Final = (
+    "Supports and never replaces clinical judgement: a qualified person decides.",
+    "No alarm and no monitor: it knows only what was logged, and nothing before it was logged.",
+    "Local policy and licensed practice come first. Thresholds marked * or 'from memory' or 'common practice' are to "
+    "be confirmed locally before anyone relies on them.",
+    "A ward settles its regulatory position before it relies on flags.",
+)
+CAUTION: Final = " ".join(CAUTIONS)
+"""All of them in one paragraph."""
+IN_SIGHT: Final = "No alarm, no monitor: it knows only what was logged."
+"""What never leaves the window."""
