@@ -13,14 +13,11 @@ from importlib import import_module
 from pathlib import Path
 from typing import NoReturn
 
+from app.caution_texts import CAUTION
 from core.record.instant import Instant
 from core.record.message import RecordError
 
 DONE, REFUSED, WRONG_USAGE = 0, 1, 2
-_CAUTION = (
-    "Supports and never replaces clinical judgement. It is no alarm and no monitor; "
-    "local policy and licensed practice come first."
-)
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -55,7 +52,7 @@ def parser() -> argparse.ArgumentParser:
     """The grammar of the command line."""
     common = _common()
     top = _Parser(
-        prog="luffmark", parents=[common], epilog=_CAUTION,
+        prog="luffmark", parents=[common], epilog=CAUTION,
         description="Shift log, response figures, flags and handover for mask ventilation. Without a command the "
         "window opens.",
     )  # fmt: skip
@@ -64,7 +61,7 @@ def parser() -> argparse.ArgumentParser:
     commands = top.add_subparsers(title="commands", metavar="COMMAND")
 
     def command(name: str, help: str, module: str | None = None) -> argparse.ArgumentParser:
-        made = commands.add_parser(name, help=help, description=help, parents=[common], epilog=_CAUTION)
+        made = commands.add_parser(name, help=help, description=help, parents=[common], epilog=CAUTION)
         made.set_defaults(module=module or name)
         return made
 
@@ -86,6 +83,7 @@ def _showing(command: Command) -> None:
     statistics.add_argument("--from", dest="start", type=moment, required=True, metavar="T", help="the span's start")
     statistics.add_argument("--to", dest="end", type=moment, required=True, metavar="T", help="the span's end")
     statistics.add_argument("--csv", type=Path, metavar="FILE", help="write a table; left out: text on the screen")
+    _may_replace(statistics)
     statistics.add_argument("--as-known-at", type=moment, metavar="T", help="only what was recorded by then")
 
     replay = command("replay", "what a policy would have flagged in past episodes, or two policies side by side")
@@ -155,6 +153,7 @@ def _printing(command: Command) -> None:
     handover.add_argument("--from", dest="start", type=moment, metavar="T", help="the shift's start")
     handover.add_argument("--to", dest="end", type=moment, metavar="T", help="the shift's end")
     handover.add_argument("--out", type=Path, metavar="FILE", help=".pdf or .txt; left out: text on the screen")
+    _may_replace(handover)
     handover.add_argument("--text", action="store_true", help="plain text, on the screen or into --out")
     handover.add_argument("--paper", choices=("A4", "Letter"), default="A4")
     handover.add_argument("--given-by", default="", metavar="NAME")
@@ -165,10 +164,12 @@ def _printing(command: Command) -> None:
     handovers = command("handovers", "the closed handovers; with an id, one of them as it was printed")
     handovers.add_argument("id", nargs="?", help="a closed handover's id")
     handovers.add_argument("--out", type=Path, metavar="FILE", help="where its PDF goes")
+    _may_replace(handovers)
     picture = command("picture", "an episode's panels or acid-base map, or a comparison, as a picture")
     picture.add_argument("episode", nargs="+", help="one; two to eight for a comparison")
     picture.add_argument("--what", choices=("panels", "map", "compare"), default="panels")
     picture.add_argument("--out", type=Path, required=True, metavar="FILE", help=".png, .svg or .pdf")
+    _may_replace(picture)
     picture.add_argument("--size", type=size, metavar="WxH", help="in pixels of 1/96 inch (1280x800)")
     picture.add_argument("--theme", choices=("light", "dark"), default="light")
     _moments(picture)
@@ -192,6 +193,7 @@ def _keeping(command: Command) -> None:
     salvage.add_argument("new", type=Path, help="the store to make")
     export = command("export", "write entries and device samples as a log file (CSV) that intake takes")
     export.add_argument("--out", type=Path, required=True, metavar="FILE")
+    _may_replace(export)
     export.add_argument("--format", choices=("csv", "fhir"), default="", help="log CSV, or FHIR R4 (for .json)")
     export.add_argument("--episode", action="append", default=[], help="only this one; may be repeated")
     export.add_argument("--channel", action="append", default=[], help="only this one, e.g. ph; may be repeated")
@@ -242,6 +244,10 @@ def _common() -> _Parser:
     group.add_argument("--gas-unit", choices=("mmHg", "kPa"), help="unit of gas pressures in text")
     group.add_argument("--zone", metavar="ZONE", help="time zone of wall-clock times (default: this computer's)")
     return common
+
+
+def _may_replace(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--replace", action="store_true", help="write over a file that is there already")
 
 
 def _moments(command: argparse.ArgumentParser) -> None:

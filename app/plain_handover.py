@@ -15,9 +15,10 @@ WIDTH = 100
 def handover_text(content: SheetContent) -> str:
     """The whole handover in lines of at most 100 letters."""
     lines = [*_ward(content.ward), *(x for p in content.episodes for x in _episode(p, content.gas_unit))]
+    at = content.signed_at or "__________"
     lines += ["", "-" * WIDTH, *_wrapped(content.caution), f"{content.printed}. {content.head}.",
-              f"Given by: {content.given_by or '____________________'}  Time: __________",
-              f"Taken by: {content.taken_by or '____________________'}  Time: __________"]  # fmt: skip
+              f"Given by: {content.given_by or '____________________'}  Time: {at}",
+              f"Taken by: {content.taken_by or '____________________'}  Time: {at}"]  # fmt: skip
     return plain("\n".join(lines)) + "\n"
 
 
@@ -35,11 +36,12 @@ def _ward(page: WardPage) -> Iterator[str]:
     if page.quiet:
         yield page.quiet[:1].upper() + page.quiet[1:]
     yield from _wrapped(f"SEE FIRST: {page.see_first}")
+    yield from _wrapped(page.compared)
     for row in page.rows:
         yield from _row(row)
     yield from ("", "DUE IN THE NEXT 4 H, AND OVERDUE")
-    for item in (*page.due, page.skin) if page.due or page.skin else ("Nothing is due.",):
-        yield from _wrapped(item, "  ") if item else ()
+    for item in [x for x in (*page.due, *page.due_other, page.skin) if x] or ["Nothing is due."]:
+        yield from _wrapped(item, "  ")
     if page.missing:
         yield from ("", "MISSING FROM THE RECORD")
         for item in page.missing:
@@ -60,11 +62,11 @@ def _episode(page: EpisodePage, unit: str) -> Iterator[str]:
     yield from ("", "=" * WIDTH)
     yield from _wrapped(f"{page.place}. {page.label.upper()}: {page.standing}")
     yield from _wrapped(page.subtitle)
-    for name, value in page.facts:
+    for name, value in (*page.facts, *page.support):
         yield from _wrapped(f"{name}: {value}", "  ")
-    yield from ("", "Settings now")
-    yield from _wrapped(page.settings, "  ")
-    yield from _wrapped(page.leak, "  ")
+    yield from ("", page.since_head)
+    for item in page.since:
+        yield from _wrapped(item, "  ")
     yield from ("", "Changes this shift and their responses")
     for c in page.changes:
         yield from _wrapped(f"{c.at} {c.what}. {c.response}", "  ")
@@ -76,9 +78,12 @@ def _episode(page: EpisodePage, unit: str) -> Iterator[str]:
     yield from ("", "Due in the next 4 h")
     for item in page.due or ("Nothing is due.",):
         yield from _wrapped(item, "  ")
+    yield from ("", "Levers that could act (a qualified person decides)")
+    for item in page.levers or ("None by what is recorded.",):
+        yield from _wrapped(item, "  ")
     yield from ("", "Plan and care")
     told = "; ".join(page.told) or ABSENT
-    for name, value in (("Plan", page.plan), ("Jobs not done", page.jobs), ("Told", told), *page.care):
+    for name, value in (*page.plan, ("Calls, answers", told), *page.care):
         yield from _wrapped(f"{name}: {value}", "  ")
     yield from ("", "Remark", *_wrapped(page.remark or ABSENT, "  "))
     if page.to_check:

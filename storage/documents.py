@@ -24,18 +24,22 @@ class DocumentFacts:
     by: str
     recorded_at: Instant
     seq: int
+    facts: str = ""
+    """What it is of, as its maker wrote it down with it; "" where nothing was."""
 
 
 def listed(connection: sa.Connection) -> tuple[DocumentFacts, ...]:
     """Every document's facts, in order."""
-    d, b = s.document.c, s.batch.c
+    d, b, e = s.document.c, s.batch.c, s.person_event.c
+    said = sa.and_(e.batch_seq == d.batch_seq, e.event == d.kind)
     query = (
-        sa.select(d.id, d.kind, d.name, sa.func.length(d.data), d.sha, b.by, b.recorded_at, d.seq)
-        .join_from(s.document, s.batch, d.batch_seq == b.seq)
+        sa.select(d.id, d.kind, d.name, sa.func.length(d.data), d.sha, b.by, b.recorded_at, d.seq, e.detail)
+        .select_from(s.document.join(s.batch, d.batch_seq == b.seq).outerjoin(s.person_event, said))
         .order_by(d.seq)
     )
     return tuple(
-        DocumentFacts(r[0], r[1], r[2], r[3], bytes(r[4]).hex(), r[5], r[6], r[7]) for r in connection.execute(query)
+        DocumentFacts(r[0], r[1], r[2], r[3], bytes(r[4]).hex(), r[5], r[6], r[7], r[8] or "")
+        for r in connection.execute(query)
     )
 
 

@@ -6,7 +6,7 @@ A chart is laid out off-screen at the wanted size and painted into the device.
 from pathlib import Path
 from typing import TYPE_CHECKING, Protocol
 
-from PySide6.QtCore import QMarginsF, QRectF, QSize, QSizeF, Qt
+from PySide6.QtCore import QBuffer, QIODevice, QMarginsF, QRectF, QSize, QSizeF, Qt
 from PySide6.QtGui import QColor, QImage, QPageSize, QPainter, QPdfWriter
 from PySide6.QtWidgets import QApplication
 
@@ -77,36 +77,68 @@ def image_of(spec: Spec, theme: Theme, width: int, height: int, scale: float = 1
     return image
 
 
-def svg_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
-    """Writes the chart as SVG; OSError where the file cannot be written."""
+def svg_data(spec: Spec, theme: Theme, width: int, height: int, title: str = "") -> bytes:
+    """The chart as the bytes of an SVG."""
     from PySide6.QtSvg import QSvgGenerator
 
-    _check_writable(path)
+    buffer = _buffer()
     generator = QSvgGenerator()
-    generator.setFileName(str(path))
+    generator.setOutputDevice(buffer)
     generator.setSize(QSize(width, height))
     generator.setViewBox(QRectF(0, 0, width, height))
     generator.setResolution(_DOTS_PER_INCH)
     generator.setTitle(title)
-    painter = QPainter(generator)
-    painter.fillRect(QRectF(0, 0, width, height), QColor(theme.colours.ground))
-    _paint(spec, theme, painter, width, height, 1.0)
-    painter.end()
+    _fill_and_paint(spec, theme, QPainter(generator), width, height)
+    return _bytes_of(buffer)
 
 
-def pdf_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
-    """Writes the chart as a PDF of one page of its own size; OSError where the file cannot be written."""
-    _check_writable(path)
-    writer = QPdfWriter(str(path))
+def pdf_data(spec: Spec, theme: Theme, width: int, height: int, title: str = "") -> bytes:
+    """The chart as the bytes of a PDF of one page of its own size."""
+    buffer = _buffer()
+    writer = QPdfWriter(buffer)
     points = QSizeF(width * 72 / _DOTS_PER_INCH, height * 72 / _DOTS_PER_INCH)
     writer.setPageSize(QPageSize(points, QPageSize.Unit.Point, "", QPageSize.SizeMatchPolicy.ExactMatch))
     writer.setPageMargins(QMarginsF(0, 0, 0, 0))
     writer.setResolution(_DOTS_PER_INCH)
     writer.setTitle(title)
-    painter = QPainter(writer)
+    _fill_and_paint(spec, theme, QPainter(writer), width, height)
+    return _bytes_of(buffer)
+
+
+def png_data(image: QImage) -> bytes:
+    """An image as the bytes of a PNG."""
+    buffer = _buffer()
+    image.save(buffer, "PNG")  # type: ignore[call-overload]
+    return _bytes_of(buffer)
+
+
+def _buffer() -> QBuffer:
+    buffer = QBuffer()
+    buffer.open(QIODevice.OpenModeFlag.WriteOnly)
+    return buffer
+
+
+def _bytes_of(buffer: QBuffer) -> bytes:
+    buffer.close()
+    return bytes(buffer.data().data())
+
+
+def _fill_and_paint(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int) -> None:
     painter.fillRect(QRectF(0, 0, width, height), QColor(theme.colours.ground))
     _paint(spec, theme, painter, width, height, 1.0)
     painter.end()
+
+
+def svg_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
+    """Writes the chart as SVG; OSError where the file cannot be written."""
+    _check_writable(path)
+    path.write_bytes(svg_data(spec, theme, width, height, title))
+
+
+def pdf_of(spec: Spec, theme: Theme, width: int, height: int, path: Path, title: str = "") -> None:
+    """Writes the chart as a PDF of one page of its own size; OSError where the file cannot be written."""
+    _check_writable(path)
+    path.write_bytes(pdf_data(spec, theme, width, height, title))
 
 
 def _check_writable(path: Path) -> None:

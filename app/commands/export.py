@@ -13,9 +13,16 @@ if TYPE_CHECKING:
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
-    """Write the file; an existing one is never overwritten."""
+    """Write the file; over one that is there only with --replace."""
     request = operations.ExportRequest(
-        args.out, tuple(args.episode), args.as_known_at, tuple(args.channel), args.start, args.end, args.dictionary
+        args.out,
+        tuple(args.episode),
+        args.as_known_at,
+        tuple(args.channel),
+        args.start,
+        args.end,
+        args.dictionary,
+        args.replace,
     )
     value: dict[str, object] = {"file": str(args.out)}
     with context.open() as store:

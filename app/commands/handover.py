@@ -12,10 +12,11 @@ from app.operations import handover as operations
 from app.plain_handover import handover_text
 from app.sheet.content import sheet_content
 from app.sheet.shapes import SheetContent
-from app.whole_file import write_whole
+from app.whole_file import claim, write_whole
 from core.record.local_time import zoned_iso
 
 if TYPE_CHECKING:
+    from app.operations.handover import Handover
     from storage.store import Store
 
 _TEXT = (".txt", ".text", ".md")
@@ -30,24 +31,34 @@ def run(context: Context, args: argparse.Namespace) -> int:
     if args.text and (suffix == ".pdf" or args.close or args.blank):
         print("luffmark: handover --text goes to the screen or into a .txt file", file=sys.stderr)
         return 2
-    if args.blank:
-        return _blank(context, args.out, args.paper)
-    if args.start is None or args.end is None:
+    if args.close and not (args.given_by and args.taken_by):
+        print("luffmark: a handover is closed with --given-by and --taken-by", file=sys.stderr)
+        return 2
+    if args.blank and suffix != ".pdf":
+        print("luffmark: handover --blank needs --out FILE.pdf", file=sys.stderr)
+        return 2
+    if not args.blank and (args.start is None or args.end is None):
         print("luffmark: handover needs --from and --to (or --blank)", file=sys.stderr)
         return 2
+    if args.out:
+        claim(args.out, replace=args.replace)
+    return _blank(context, args.out, args.paper) if args.blank else _gathered(context, args, suffix)
+
+
+def _gathered(context: Context, args: argparse.Namespace, suffix: str) -> int:
     reader = context.reader()
     with context.open(read_only=not (args.close or args.out)) as store:
         request = operations.HandoverRequest(args.start, args.end, args.as_known_at)
         gathered = operations.prepare(store, context.by, context.now(), request).value
         content = sheet_content(gathered, reader, given_by=args.given_by, taken_by=args.taken_by)
         if args.close:
-            return _close(context, store, content, args)
+            return _close(context, store, gathered, content, args)
         if args.out:
             operations.note_print(store, context.by, context.now(), f"{content.ward.shift}, {content.head}")
     value = {
         "from": zoned_iso(args.start, reader.zone), "to": zoned_iso(args.end, reader.zone),
-        "head": gathered.printed_head, "episodes": [s.episode for s in gathered.shift.episodes],
-        "see_first": content.ward.see_first,
+        "as_of": zoned_iso(gathered.shift.end, reader.zone), "head": gathered.printed_head,
+        "episodes": [s.episode for s in gathered.shift.episodes], "see_first": content.ward.see_first,
     }  # fmt: skip
     if args.out is None:
         context.answer(handover_text(content).rstrip(), value | {"text": handover_text(content)})
@@ -57,38 +68,35 @@ def run(context: Context, args: argparse.Namespace) -> int:
         context.answer(f"{args.out}: {pages} pages, {len(content.episodes)} episodes. {content.head}.",
                        value | {"file": str(args.out), "pages": pages, "paper": args.paper})  # fmt: skip
         return 0
-    args.out.write_text(handover_text(content), "utf-8")
+    write_whole(args.out, handover_text(content).encode("utf-8"))
     context.answer(f"{args.out}: {len(content.episodes)} episodes. {content.head}.", value | {"file": str(args.out)})
     return 0
 
 
-def _close(context: Context, store: Store, content: SheetContent, args: argparse.Namespace) -> int:
+def _close(
+    context: Context, store: Store, gathered: Handover, content: SheetContent, args: argparse.Namespace
+) -> int:
     """Keep the sheet in the ledger as it was printed, and write the very same bytes where --out says."""
     from app.off_screen import gui_application
     from app.sheet.printing import pdf_bytes
 
-    if not args.given_by or not args.taken_by:
-        print("luffmark: a handover is closed with --given-by and --taken-by", file=sys.stderr)
-        return 2
     with gui_application():
         data, pages = pdf_bytes(content, args.paper)
     name = operations.closed_name(content.ward.shift, args.given_by, args.taken_by)
-    kept = operations.close(store, context.by, context.now(), operations.ClosedHandover(name, data))
-    if args.out is not None:
-        write_whole(args.out, data)
+    closing = operations.ClosedHandover(name, data, operations.facts_of(gathered))
+    kept = operations.close(store, context.by, context.now(), closing)
     context.answer(f"Closed as {kept.value}: {name}, {pages} pages. {content.head}.",
                    {"id": kept.value, "name": name, "pages": pages, "head": store.printed_head()})  # fmt: skip
+    if args.out is not None:
+        write_whole(args.out, data)  # it is told before that it is kept: a full disk takes only the copy
     return 0
 
 
-def _blank(context: Context, path: Path | None, paper: str) -> int:
+def _blank(context: Context, path: Path, paper: str) -> int:
     """The same sheet, empty."""
     from app.off_screen import gui_application
     from app.sheet.blank import blank_bytes
 
-    if path is None or path.suffix.lower() != ".pdf":
-        print("luffmark: handover --blank needs --out FILE.pdf", file=sys.stderr)
-        return 2
     with gui_application():
         data, pages = blank_bytes(paper)
     write_whole(path, data)

@@ -8,7 +8,7 @@ import sys
 from app.commands.context import Context
 from app.formats import wall
 from app.operations import handover as operations
-from app.whole_file import write_whole
+from app.whole_file import claim, write_whole
 from core.record.local_time import zoned_iso
 
 
@@ -26,6 +26,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
         if args.out is None:
             print("luffmark: handovers ID needs --out FILE.pdf", file=sys.stderr)
             return 2
+        claim(args.out, replace=args.replace)
         data = operations.closed(store, context.by, context.now(), args.id).value
     write_whole(args.out, data)
     told = {"file": str(args.out), "id": args.id, "size": len(data)}

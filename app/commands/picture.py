@@ -5,7 +5,6 @@ from __future__ import annotations
 import argparse
 import sys
 from dataclasses import replace
-from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.commands.context import Context, remark
@@ -15,6 +14,7 @@ from app.operations import figures as operations
 from app.operations import panel as panels
 from app.operations import policy as policies
 from app.picture import SUFFIXES, Picture, write_picture
+from app.whole_file import claim
 from core.record.instant import HOUR, Instant
 
 if TYPE_CHECKING:
@@ -34,7 +34,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
         wanted = "two to eight episodes" if args.what == "compare" else "one episode"
         print(f"luffmark: picture --what {args.what} needs {wanted}", file=sys.stderr)
         return 2
-    _check_writable(args.out)
+    claim(args.out, replace=args.replace)
     from app.off_screen import gui_application
     from app.theme import THEMES
 
@@ -112,12 +112,3 @@ def _shown(context: Context, store: Store, request: operations.EpisodeRequest) -
     return EpisodeOnScreen(
         answer.record.until(request.as_of), answer.figures, course, policy, chosen, context.gas_unit
     )
-
-
-def _check_writable(path: Path) -> None:
-    """Qt only warns where it cannot write: the reason is told before anything is drawn."""
-    existed = path.exists()
-    with path.open("ab"):
-        pass
-    if not existed:
-        path.unlink()

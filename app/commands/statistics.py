@@ -7,12 +7,14 @@ import argparse
 from app.commands.context import Context
 from app.operations import statistics as operations
 from app.statistics.measures import as_csv, as_json, as_text
-from app.whole_file import write_whole
+from app.whole_file import claim, write_whole
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Count and tell; with --csv write the table."""
     reader = context.reader()
+    if args.csv is not None:
+        claim(args.csv, replace=args.replace)
     with context.open(read_only=True) as store:
         request = operations.StatisticsRequest(args.start, args.end, args.as_known_at)
         found = operations.of_ward(store, context.by, context.now(), request).value

@@ -57,7 +57,7 @@ class ClosingDeeds(WritingDeeds):
         content = sheet_content(outcome.value, self.window.plain_reader, given_by=given_by, taken_by=taken_by)
         data, _ = pdf_bytes(content, paper)
         name = handover.closed_name(content.ward.shift, given_by, taken_by)
-        request = handover.ClosedHandover(name, data)
+        request = handover.ClosedHandover(name, data, handover.facts_of(outcome.value))
         self.model.ask(handover.close, request, done=self._closed, failed=self._not_closed)
 
     def _closed(self, outcome: Outcome[str]) -> None:  # noqa: ARG002

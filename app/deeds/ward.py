@@ -84,11 +84,11 @@ class WardDeeds(Doer):
         )
 
     def handover_request(self) -> handover.HandoverRequest:
-        """The shift that is looked at, as far as it has come."""
+        """The shift that is looked at."""
         from app.operations import handover
 
         shift, session = self.window.shift(), self.model.session
-        return handover.HandoverRequest(shift.start, min(shift.end, session.moment()), session.as_known_at)
+        return handover.HandoverRequest(shift.start, shift.end, session.as_known_at, session.as_of)
 
     def _gathered(self, outcome: Outcome[handover.Handover]) -> None:
         from app.sheet.content import sheet_content

@@ -86,13 +86,13 @@ class WritingDeeds(Doer):
             self.export(wanted, path)
 
     def export(self, wanted: Wanted, path: Path) -> None:
-        """Write what was chosen; an existing file is never overwritten."""
+        """Write what was chosen; whoever chose a file that is there was asked about it."""
         from app.operations import export
 
         shift = self.window.shift() if wanted.shift_only else None
         request = export.ExportRequest(
             path, wanted.episodes, self.model.session.as_known_at, wanted.channels,
-            shift.start if shift else None, shift.end if shift else None, wanted.dictionary,
+            shift.start if shift else None, shift.end if shift else None, wanted.dictionary, replace=True,
         )  # fmt: skip
         self._export_path = path
         if wanted.deidentified:

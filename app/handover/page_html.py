@@ -46,6 +46,7 @@ class _Writer:
         yield self.heading(page.shift, self.theme.type.title)
         if page.quiet:
             yield self.text(page.quiet[:1].upper() + page.quiet[1:])
+        yield self.quiet(page.compared)
         first = translate("handover", "See first: {who}").format(who=page.see_first)
         yield self.heading(first, self.theme.type.emphasis)
         heads = (
@@ -56,8 +57,8 @@ class _Writer:
         )
         yield self.table(heads, (self.ward_row(r) for r in page.rows), (16, 22, 36, 26))
         yield self.heading(translate("handover", "Due, gases first"), self.theme.type.emphasis)
-        yield from (self.text(line) for line in page.due)
-        if page.skin or not page.due:
+        yield from (self.text(line) for line in (*page.due, *page.due_other))
+        if page.skin or not (page.due or page.due_other):
             yield self.text(page.skin or translate("handover", "Nothing due within 4 h."))
         yield from (self.quiet(line) for line in page.missing)
 
@@ -76,7 +77,7 @@ class _Writer:
         """The response; what got worse or lost its gain in the colour of its sign, and strong."""
         if not r.is_grave:
             return escape(r.response)
-        colour = self.c.verdicts[Verdict(r.sign)]
+        colour = self.c.verdict_inks[Verdict(r.sign)]
         return f'<span style="color:{colour}; font-weight:600">{escape(r.response)}</span>'
 
     def table(self, heads: Iterable[str], rows: Iterable[Iterable[str]], widths: Iterable[int]) -> str:
@@ -95,12 +96,11 @@ class _Writer:
         yield self.heading(page.label, self.theme.type.title, page.label)
         yield self.quiet(page.subtitle)
         yield self.text(page.standing)
-        yield self.text(page.settings)
-        yield self.table(
-            ("", ""),
-            ((f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v)) for k, v in page.facts),
-            (22, 78),
-        )
+        facts = (*page.facts, *page.support)
+        cells = ((f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v)) for k, v in facts)
+        yield self.table(("", ""), cells, (22, 78))
+        yield self.heading(page.since_head, self.theme.type.emphasis)
+        yield from (self.text(line) for line in page.since)
         if page.flags:
             yield self.heading(translate("handover", "Flags"), self.theme.type.emphasis)
             yield from (self.flag(f) for f in page.flags)
@@ -108,14 +108,18 @@ class _Writer:
         yield from self.changes(page.changes)
         yield self.heading(translate("handover", "Due next"), self.theme.type.emphasis)
         yield from (self.text(d) for d in page.due or (translate("handover", "Nothing due within 4 h."),))
+        yield self.heading(
+            translate("handover", "Levers that could act (a qualified person decides)"), self.theme.type.emphasis
+        )
+        yield from (self.text(x) for x in page.levers or (translate("handover", "None by what is recorded."),))
         yield self.heading(translate("handover", "Care, plan, calls"), self.theme.type.emphasis)
         yield from (self.text(f"{k}: {v}") for k, v in page.care)
         yield from (self.text(translate("handover", "Told: {who}").format(who=t)) for t in page.told)
-        yield self.text(translate("handover", "Plan: {plan}").format(plan=page.plan))
-        yield self.text(translate("handover", "Jobs: {jobs}").format(jobs=page.jobs))
+        yield from (self.text(f"{k}: {v}") for k, v in page.plan)
         yield self.text(
             translate("handover", "Remark: {remark}").format(
-                remark=page.remark or translate("handover", "not recorded. Type 'handover remark ...' on the log strip.")
+                remark=page.remark
+                or translate("handover", "not recorded. Type 'handover remark ...' on the log strip.")
             )
         )
         yield from (self.quiet(line) for line in page.to_check)

@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import dataclass, replace
 from pathlib import Path
+from tempfile import TemporaryDirectory
 from typing import TYPE_CHECKING
 
 from app.operations.episode import check_known
@@ -22,7 +25,7 @@ if TYPE_CHECKING:
 class ExportRequest:
     """Where to and what: episodes and channels (empty: all), a span (None: open), as known at a moment (None: all).
 
-    `dictionary`: the data dictionary goes beside it, into `FILE.dictionary.csv`.
+    `dictionary`: the data dictionary goes beside it, into `FILE.dictionary.csv`. `replace`: over what is there.
     """
 
     path: Path
@@ -32,6 +35,7 @@ class ExportRequest:
     start: Instant | None = None
     end: Instant | None = None
     dictionary: bool = False
+    replace: bool = False
 
     @property
     def dictionary_path(self) -> Path:
@@ -48,14 +52,15 @@ def write(store: Store, who: str, now: Instant, request: ExportRequest) -> Outco
     """Write a log file (CSV) of what stands; the number of its rows.
 
     Raises:
-        RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`.
-        StoreError: `store.exists`, `store.export_failed`.
+        RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`, `file.exists`.
+        StoreError: `store.export_failed`.
     """
     from storage.export.selection import write_selection
 
     selection, head = _selection(store, request), _head(store, request)
-    rows = write_selection(store, request.path, selection, head)
-    _write_dictionary(request)
+    with _together(request) as placed:
+        rows = write_selection(store, placed.path, selection, head)
+        _write_dictionary(placed)
     _note(store, who, now, f"{request.path.name}: {rows} rows")
     return Outcome(rows, store.head())
 
@@ -64,13 +69,14 @@ def write_fhir(store: Store, who: str, now: Instant, request: ExportRequest) -> 
     """Write whole episodes as one FHIR R4 Bundle of what stands; the number of its observations.
 
     Raises:
-        RecordError: `episode.unknown`.
-        StoreError: `store.exists`, `store.export_failed`.
+        RecordError: `episode.unknown`, `file.exists`.
+        StoreError: `store.export_failed`.
     """
     from storage.export.fhir import write_fhir
 
     selection, head = _selection(store, request), _head(store, request)
-    count = write_fhir(store, request.path, episodes=selection.episodes or None, head=head)
+    with _together(request) as placed:
+        count = write_fhir(store, placed.path, episodes=selection.episodes or None, head=head)
     _note(store, who, now, f"{request.path.name}: {count} observations")
     return Outcome(count, store.head())
 
@@ -79,20 +85,42 @@ def write_deidentified(store: Store, who: str, now: Instant, request: ExportRequ
     """Write what stands de-identified, and beside it in words what was left out and what remains.
 
     Raises:
-        RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`.
-        StoreError: `store.exists`, `store.export_failed`.
+        RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`, `file.exists`.
+        StoreError: `store.export_failed`.
     """
     from app.export_words import statement_text
     from storage.export import deidentified
     from storage.export.whole_file import whole_file
 
     selection, head = _selection(store, request), _head(store, request)
-    told = deidentified.write_deidentified(store, request.path, selection, head)
-    with whole_file(request.about_path) as file:
-        file.write(statement_text(told))
-    _write_dictionary(request)
+    with _together(request) as placed:
+        told = deidentified.write_deidentified(store, placed.path, selection, head)
+        with whole_file(placed.about_path) as file:
+            file.write(statement_text(told))
+        _write_dictionary(placed)
     _note(store, who, now, f"{request.path.name}: {told.rows} rows, de-identified")
     return Outcome(told, store.head())
+
+
+@contextmanager
+def _together(request: ExportRequest) -> Iterator[ExportRequest]:
+    """The request with its files in a folder of their own, from which all of them go into place, or none does.
+
+    Raises:
+        RecordError: `file.exists`, unless the request replaces.
+        OSError: the folder cannot be written to.
+    """
+    target = request.path
+    for path in (target, request.about_path, request.dictionary_path):
+        if path.exists() and not request.replace:
+            raise refuse("file.exists", path=str(path))
+    try:
+        with TemporaryDirectory(prefix=".unfinished-", dir=target.parent) as folder:
+            yield replace(request, path=Path(folder) / target.name)
+            for made in Path(folder).iterdir():
+                made.replace(target.with_name(made.name))
+    except OSError as error:
+        raise type(error)(error.errno, error.strerror, str(target)) from error
 
 
 def _selection(store: Store, request: ExportRequest) -> Selection:

@@ -9,11 +9,11 @@ from typing import Final
 from PySide6.QtCore import QBuffer, QIODevice
 from PySide6.QtGui import QGuiApplication, QPainter, QPdfWriter
 
+from app.caution_texts import CAUTION
 from app.sheet.blocks import Block, Heading, RuledBox, Signatures, draw_all, height_of
 from app.sheet.gas_table import HEADINGS as GAS_HEADINGS
 from app.sheet.press import LINE, SMALL, SUBTITLE, TITLE, Align, Press, Style
 from app.sheet.printing import DOTS_PER_INCH, set_paper
-from app.sheet.shapes import CAUTION
 
 MARGIN: Final = 36.0
 _HEAD, _FOOT = 40.0, 27.0
@@ -86,7 +86,7 @@ def ward_blocks() -> list[Block]:
 
 def episode_blocks() -> list[Block]:
     """One episode's page."""
-    shares = (8, 6, 12, 13, 9, 9, 8, 9, 14, 28)
+    shares = (8, 6, 8, 7, 9, 7, 8, 8, 7, 8, 14, 26)
     changes = (("Time", 8), ("Change: IPAP, EPAP, FiO2, rate, mode, interface", 46), ("What it did", 46))
     observed = ("Time", "RR", "HR", "SpO2", "BP", "GCS / ACVPU", "Temp", "Leak", "VTe")
     flags = (("Since", 8), ("What was met, with its values", 56), ("Seen or settled by", 36))
@@ -139,10 +139,7 @@ def _draw_page(press: Press, number: int, pages: int, width: float, height: floa
     at = press.at_scale(next(fits, 0.78))
     y = draw_all(blocks, at, MARGIN, top, wide)
     foot = bottom - signed.height(at, wide)
-    heading = Heading("Remark")
-    heading.draw(at, MARGIN, y, wide)
-    y += heading.height(at, wide)
-    RuledBox("").draw_high(at, MARGIN, y, wide, max(foot - y, at.gap(20)))
+    RuledBox("", "").draw_high(at, MARGIN, y + 5, wide, max(foot - y - 5, at.gap(20)))
     signed.draw(at, MARGIN, foot, wide)
 
 
@@ -160,7 +157,7 @@ def _draw_frame(press: Press, title: str, number: int, pages: int, width: float,
     press.line(MARGIN, MARGIN + 31, MARGIN + wide, MARGIN + 31, 1.4)
     top = height - MARGIN - _FOOT + 8
     press.line(MARGIN, top, MARGIN + wide, top, 0.5)
-    foot = Style(6.6)
+    foot = Style(7.2)
     press.text(MARGIN, top + 2.5, wide, CAUTION, foot)
     under = top + 2.5 + press.height(CAUTION, foot, wide) + 1
     press.text(MARGIN, under, wide * 0.8, "Blank form: nothing on it is from the record.", foot)

@@ -55,10 +55,10 @@ class Heading:
     remark: str = ""
 
     def height(self, press: Press, width: float) -> float:
-        return press.gap(6) + press.height(self.words, HEADING, width) + press.gap(3)
+        return press.gap(5) + press.height(self.words, HEADING, width) + press.gap(2.5)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
-        top = y + press.gap(6)
+        top = y + press.gap(5)
         high = press.text(x, top, width, self.words, HEADING)
         if self.remark:
             press.text(x, top + press.gap(0.8), width, self.remark, SMALL, Align.RIGHT)
@@ -71,7 +71,8 @@ class Facts:
 
     facts: Sequence[tuple[str, str]]
     columns: int = 2
-    name_width: float = 82.0
+    name_width: float = 80.0
+    value_style: Style = BODY
 
     def _split(self) -> list[Sequence[tuple[str, str]]]:
         per = -(-len(self.facts) // self.columns)
@@ -86,7 +87,9 @@ class Facts:
 
     def _row(self, press: Press, fact: tuple[str, str], width: float) -> float:
         name = press.gap(self.name_width)
-        return max(press.height(fact[1], BODY, width - name), press.height(fact[0], SMALL, name)) + press.gap(1.5)
+        return max(
+            press.height(fact[1], self.value_style, width - name), press.height(fact[0], SMALL, name)
+        ) + press.gap(1.5)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         each, name = self._width(press, width), press.gap(self.name_width)
@@ -94,7 +97,7 @@ class Facts:
             left, top = x + n * (each + press.gap(14)), y
             for fact in part:
                 press.text(left, top + press.gap(0.9), name, fact[0], SMALL)
-                press.text(left + name, top, each - name, fact[1], BODY)
+                press.text(left + name, top, each - name, fact[1], self.value_style)
                 top += self._row(press, fact, each)
 
 
@@ -158,21 +161,59 @@ class Table:
 
 
 @dataclass(frozen=True, slots=True)
-class TierMark:
-    """A flag's tier as a word in a box: filled, framed or plain, so that it reads without colour."""
+class Flag:
+    """A flag in one row: its tier as a word in a box (filled, framed or plain, so that it reads without colour), what
+    is met since when, and beside it the evidence."""
 
     tier: str
-    words: str
+    head: str
+    evidence: str
     style: Style = STRONG
-    box_width: float = 54.0
+    box_width: float = 50.0
+    head_share: float = 0.4
+
+    def _widths(self, press: Press, width: float) -> tuple[float, float, float]:
+        box = press.gap(self.box_width)
+        left = width - box - press.gap(12)
+        head = left * self.head_share if self.evidence else left
+        return box, head, left - head
 
     def height(self, press: Press, width: float) -> float:
-        return press.height(self.words, self.style, width - press.gap(self.box_width + 5)) + press.gap(2)
+        """The higher of both columns."""
+        _, head, evidence = self._widths(press, width)
+        beside = press.height(self.evidence, SMALL, evidence) if self.evidence else 0.0
+        return max(press.height(self.head, self.style, head), beside) + press.gap(2.5)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
-        wide = press.gap(self.box_width)
-        draw_tier(press, x, y, wide, self.tier)
-        press.text(x + wide + press.gap(5), y, width - wide - press.gap(5), self.words, self.style)
+        """The box, the head, the evidence."""
+        box, head, evidence = self._widths(press, width)
+        draw_tier(press, x, y - press.gap(0.5), box, self.tier)
+        press.text(x + box + press.gap(5), y, head, self.head, self.style)
+        if self.evidence:
+            press.text(x + box + press.gap(12) + head, y + press.gap(0.5), evidence, self.evidence, SMALL)
+
+
+@dataclass(frozen=True, slots=True)
+class SideBySide:
+    """Two columns of blocks."""
+
+    left: tuple[Block, ...]
+    right: tuple[Block, ...]
+    between: float = 16.0
+
+    def height(self, press: Press, width: float) -> float:
+        """The higher of both columns."""
+        each = self._width(press, width)
+        return max(height_of(self.left, press, each), height_of(self.right, press, each))
+
+    def _width(self, press: Press, width: float) -> float:
+        return (width - press.gap(self.between)) / 2
+
+    def draw(self, press: Press, x: float, y: float, width: float) -> None:
+        """Each column from the same top."""
+        each = self._width(press, width)
+        draw_all(self.left, press, x, y, each)
+        draw_all(self.right, press, x + each + press.gap(self.between), y, each)
 
 
 def draw_tier(press: Press, x: float, y: float, width: float, tier: str) -> None:
@@ -190,26 +231,32 @@ def draw_tier(press: Press, x: float, y: float, width: float, tier: str) -> None
 
 @dataclass(frozen=True, slots=True)
 class Signatures:
-    """Lines to sign: given by, taken by, each with its time; a name given is printed on its line."""
+    """Lines to sign: given by, taken by, each with its time; what is known is printed on its line."""
 
     given_by: str
     taken_by: str
+    at: str = ""
+    """When it was given and taken; "" leaves the line to write it."""
 
     def height(self, press: Press, width: float) -> float:  # noqa: ARG002
-        return press.gap(30)
+        """Room to write."""
+        return press.gap(23)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
-        half = (width - press.gap(20)) / 2
-        second = x + half + press.gap(20)
-        for left, label, name in ((x, "Given by", self.given_by), (second, "Taken by", self.taken_by)):
-            base = y + press.gap(22)
-            split = left + half * 0.66
-            press.line(left, base, split - press.gap(8), base, 0.5)
-            press.line(split, base, left + half, base, 0.5)
-            press.text(left, base + press.gap(1.5), half * 0.6, label, SMALL)
-            press.text(split, base + press.gap(1.5), half * 0.34, "Time", SMALL)
-            if name:
-                press.text(left, base - press.gap(12.5), half * 0.62, name, BODY)
+        """Two lines for each."""
+        half, base = (width - press.gap(16)) / 2, y + press.gap(19)
+        for left, label, name in ((x, "Given by", self.given_by),
+                                  (x + half + press.gap(16), "Taken by", self.taken_by)):  # fmt: skip
+            split, end = left + half * 0.6, left + half
+            self._line(press, left, base, split - press.gap(6), label, name)
+            self._line(press, split, base, end, "Time", self.at if name else "")
+
+    @staticmethod
+    def _line(press: Press, left: float, base: float, right: float, label: str, words: str) -> None:
+        named = left + press.width(label, SMALL) + press.gap(4)
+        press.text(left, base - press.gap(9), named - left + 2, label, SMALL)
+        press.line(named, base, right, base, 0.5)
+        press.text(named, base - press.gap(9.5), right - named, words, BODY)
 
 
 @dataclass(frozen=True, slots=True)
@@ -217,12 +264,18 @@ class RuledBox:
     """Room to write by hand, ruled, after what was typed already. It takes the height it is given."""
 
     words: str
+    empty: str = "not recorded; room to write by hand"
+    """What stands beside its name where nothing was typed."""
     least: float = 40.0
     rule: float = 15.0
 
     def height(self, press: Press, width: float) -> float:
         typed = press.height(self.words, BODY, width - press.gap(10)) if self.words else 0.0
-        return max(press.gap(self.least), typed + press.gap(self.rule + 8))
+        return max(press.gap(self.least), typed + press.gap(self.rule + 8) + self._name_height(press, width))
+
+    @staticmethod
+    def _name_height(press: Press, width: float) -> float:
+        return press.height("Remark", HEADING, width)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         self.draw_high(press, x, y, width, self.height(press, width))
@@ -230,7 +283,10 @@ class RuledBox:
     def draw_high(self, press: Press, x: float, y: float, width: float, high: float) -> None:
         """Draw it with a height of its own."""
         press.box(x, y, width, high, weight=0.5, ink=LINE)
-        top = y + press.gap(4)
+        press.text(x + press.gap(5), y + press.gap(2), width, "Remark", HEADING)
+        if not self.words:
+            press.text(x, y + press.gap(2.5), width - press.gap(5), self.empty, SMALL, Align.RIGHT)
+        top = y + press.gap(2) + self._name_height(press, width)
         if self.words:
             top += press.text(x + press.gap(5), top, width - press.gap(10), self.words, BODY)
         line = top + press.gap(self.rule)

@@ -85,14 +85,19 @@ class ShiftChart:
     changes: tuple[Instant, ...] = field(default=())
 
 
-def shift_chart(record: Episode, figures: EpisodeFigures, start: Instant, end: Instant, reader: Reader) -> ShiftChart:
-    """The chart of a shift: one hour before it to its end."""
+def shift_chart(
+    record: Episode,
+    figures: EpisodeFigures,
+    span: tuple[Instant, Instant],
+    target: tuple[float, float],
+    reader: Reader,
+) -> ShiftChart:
+    """The chart of a shift from one hour before `span` to its end. `target`: the SpO2 range in force."""
+    start, end = span
     cut = record.until(end)
     settings = SettingsInForce(cut)
     support = support_time(cut, settings)
     begin = _begin(cut, start)
-    low, high = figures.profile.get("target_spo2_low"), figures.profile.get("target_spo2_high")
-    target = (low, high) if isinstance(low, float) and isinstance(high, float) else None
     breaks = tuple((max(b.start, begin), b.end if b.end is not None else end) for b in support.breaks
                    if b.end is None or b.end > begin)  # fmt: skip
     return ShiftChart(
@@ -170,7 +175,7 @@ def _rate(record: Episode, begin: Instant, end: Instant) -> Strip:
     return Strip("Rate /min", counted, _line(machine if len(machine) else own), least_span=15)
 
 
-def _spo2(record: Episode, begin: Instant, end: Instant, target: tuple[float, float] | None) -> Strip:
+def _spo2(record: Episode, begin: Instant, end: Instant, target: tuple[float, float]) -> Strip:
     series = record.number("spo2").between(begin, end)
     return Strip("SpO2 %", _dots(series.spots), _line(series.machine), target, least_span=10)
 

@@ -9,24 +9,25 @@ import numpy as np
 from PySide6.QtCore import Qt
 
 from app import formats
-from app.sheet.chart_data import GAP, Dot, Line, ShiftChart, Strip
+from app.sheet.chart_data import GAP, Line, ShiftChart, Strip
 from app.sheet.press import GREY, LINE, PALE, SMALL, Align, Press, Style
 from core.record.instant import HOUR, Instant
 
-LABEL = Style(6.8, True)
-VALUE = Style(6.6)
-RIBBON_SHARE = 1.5
-_LEFT, _RIGHT, _AXIS = 50.0, 30.0, 12.0
-_TEXT_HIGH = 8.0
+LABEL = Style(7.2, True)
+VALUE = Style(7.2)
+NEWEST = Style(7.2, True)
+SCALE = Style(7.0, False, GREY)
+RIBBON_SHARE = 1.3
+_LEFT, _RIGHT, _AXIS = 56.0, 30.0, 12.0
+_TEXT_HIGH = 8.6
 
 
 @dataclass(frozen=True, slots=True)
 class ChartBlock:
-    """The chart as a block of a page; it takes any height from `least` up."""
+    """The chart as a block of a page; it takes the height it is given."""
 
     chart: ShiftChart
     high: float = 150.0
-    least: float = 118.0
 
     def height(self, press: Press, width: float) -> float:  # noqa: ARG002
         """Its height, which does not depend on the width."""
@@ -146,50 +147,63 @@ class _Plot:
         p = self.press
         low, most = _range(strip)
 
+        ground = top + _TEXT_HIGH  # values stand in a row of their own over the strip: they touch no line
+
         def y(value: float) -> float:
-            return top + high - (value - low) / (most - low) * high
+            return top + high - (value - low) / (most - low) * (top + high - ground)
 
         if strip.band is not None:
             b_low, b_high = max(strip.band[0], low), min(strip.band[1], most)
             if b_high > b_low:
                 p.box(self.left, y(b_high), self.width, y(b_low) - y(b_high), fill="#efefef")
         name, _, unit = strip.name.partition(" ")
-        p.text(label_left, top + high / 2 - (8 if unit else 4.5), _LEFT - 4, f"{name}\n{unit}".strip(), LABEL)
+        p.text(label_left, top + high / 2 - (8 if unit else 3.5), _LEFT - 4, f"{name}\n{unit}".strip(), LABEL)
         p.line(self.left, top + high, self.left + self.width, top + high, 0.3, LINE)
         decimals = 2 if strip.name == "pH" else 0
         right = self.left + self.width + 5
-        p.text(right, top - 2, _RIGHT - 5, formats.trimmed(most, decimals), Style(5.8, False, GREY))
-        p.text(right, top + high - 7, _RIGHT - 5, formats.trimmed(low, decimals), Style(5.8, False, GREY))
+        p.text(right, ground - 4, _RIGHT - 5, formats.trimmed(most, decimals), SCALE)
+        p.text(right, top + high - 7, _RIGHT - 5, formats.trimmed(low, decimals), SCALE)
         for part in joined(strip.line):
             p.path([(self.x(int(t)), y(float(v))) for t, v in zip(part.t, part.v, strict=True)], 0.55, GREY)
-        self._dots(strip, y, top, high)
+        self._dots(strip, y, top)
 
-    def _dots(self, strip: Strip, y: Callable[[float], float], top: float, high: float) -> None:
-        """Dots joined by a fine line where there is no device line; values where they do not touch."""
+    def _dots(self, strip: Strip, y: Callable[[float], float], top: float) -> None:
+        """Dots joined by a fine line where there is no device line; the values over them where they do not touch."""
         p = self.press
         places = [(self.x(d.at), y(d.value), d) for d in strip.dots]
         if not strip.line.t.size and len(places) > 1:
             p.path([(x, at) for x, at, _ in places], 0.4, GREY)
-        free = -1e9
-        for n, (x, at, dot) in enumerate(places):
+        for x, at, dot in places:
             p.dot(x, at, 1.5, hollow=dot.hollow)
-            wide = p.width(dot.label, VALUE)
-            if x - wide / 2 < free or (strip.line.t.size and n % _label_every(strip.dots)):
-                continue
-            above = at - _TEXT_HIGH - 1.5
-            under = at + 1.8
-            place = above if above >= top - 3 else under
-            if place + _TEXT_HIGH > top + high + 3:
-                place = top + high - _TEXT_HIGH
-            x = min(x, self.left + self.width - wide / 2 + 2)
-            if strip.line.t.size:
-                p.box(x - wide / 2 - 0.5, place + 1, wide + 1, _TEXT_HIGH - 1.5, fill="#ffffff")
-            p.text(x - wide / 2 - 2, place, wide + 4, dot.label, VALUE, Align.CENTRE)
-            free = x + wide / 2 + 2
+        labels = [(x, dot.label, VALUE) for x, _, dot in places]
+        newest = _newest(strip.line)
+        if newest is not None and (not places or newest[0] > strip.dots[-1].at):
+            labels.append((self.x(newest[0]), formats.trimmed(newest[1], 0), NEWEST))
+        for x, label, style in _apart(labels, p, self.left + self.width):
+            wide = p.width(label, style)
+            p.box(x - 0.5, top + 0.5, wide + 1, _TEXT_HIGH - 1, fill="#ffffff")
+            p.text(x, top - 0.3, wide + 2, label, style)
 
 
-def _label_every(dots: tuple[Dot, ...]) -> int:
-    return max(1, len(dots) // 12)
+def _newest(line: Line) -> tuple[int, float] | None:
+    """The newest value of a line."""
+    kept = np.flatnonzero(np.isfinite(line.v))
+    return (int(line.t[kept[-1]]), float(line.v[kept[-1]])) if kept.size else None
+
+
+def _apart(labels: list[tuple[float, str, Style]], press: Press, most: float) -> list[tuple[float, str, Style]]:
+    """Labels by their left edge, the newest first to have room: a value that would touch one stands in the table."""
+    kept: list[tuple[float, str, Style]] = []
+    free = most + 8.0
+    for x, label, style in reversed(labels):
+        wide = press.width(label, style)
+        left = min(x - wide / 2, free - wide)
+        if x - wide / 2 - left <= wide and left >= 0 and left + wide <= free + 1e-6 and (
+            not kept or x + wide / 2 <= free + 0.1
+        ):  # fmt: skip
+            kept.append((left, label, style))
+            free = left - 4.0
+    return kept
 
 
 def _range(strip: Strip) -> tuple[float, float]:

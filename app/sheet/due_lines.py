@@ -1,4 +1,4 @@
-"""What is due on the ward, in lines: gases first, the longest overdue on top, checks of the skin summed last."""
+"""What is due on the ward, in lines: gases first, the longest overdue on top, then other kinds, skin checks last."""
 
 from __future__ import annotations
 
@@ -16,24 +16,37 @@ from core.record.instant import MINUTE
 SKIN: Final = "skin_check"
 
 
-def ward_due(episodes: Iterable[ShiftFigures], reader: Reader) -> Iterator[str]:
-    """A line for each due item but the checks of the skin."""
-    items = [(s, d) for s in episodes for d in s.due if d.what != SKIN]
+def gases_due(episodes: Iterable[ShiftFigures], reader: Reader) -> Iterator[str]:
+    """A line for each gas that is due, the longest overdue first."""
+    items = [(s, d) for s in episodes for d in s.due if d.what in GAS]
     for s, d in sorted(items, key=lambda x: (*_urgency(x[1]), x[0].now.label)):
         yield f"{s.now.label}: {due_short(d, reader, s.end)}"
 
 
-def _urgency(d: DueFigure) -> tuple[bool, bool, int]:
-    return d.what not in GAS, d.state != "overdue", d.due_until
+def others_due(episodes: Iterable[ShiftFigures], reader: Reader) -> Iterator[str]:
+    """A line for each other kind of due item, the longest overdue first in it and of them; skin checks apart."""
+    items = [(s, d) for s in episodes for d in s.due if d.what not in GAS and d.what != SKIN]
+    kinds: dict[str, list[str]] = {}
+    for s, d in sorted(items, key=lambda x: (*_urgency(x[1]), x[0].now.label)):
+        kinds.setdefault(due_name(d.what, reader), []).append(f"{s.now.label} {_when(d, reader, s.end)}")
+    for name, found in kinds.items():
+        yield f"{name}: {'; '.join(found)}"
+
+
+def _urgency(d: DueFigure) -> tuple[bool, int]:
+    return d.state != "overdue", d.due_until
 
 
 def due_short(d: DueFigure, reader: Reader, as_of: int | None = None) -> str:
     """What is due, by when; where it is overdue and `as_of` is told, by how long."""
-    name = due_name(d.what, reader)
+    return f"{due_name(d.what, reader)} {_when(d, reader, as_of)}"
+
+
+def _when(d: DueFigure, reader: Reader, as_of: int | None) -> str:
     if d.state == "overdue" and as_of is not None:
-        return f"{name} {formats.minutes((as_of - d.due_until) / MINUTE)} OVERDUE"
+        return f"OVERDUE {formats.minutes((as_of - d.due_until) / MINUTE)}"
     state = {"overdue": " OVERDUE", "awaiting result": " (sent, awaiting result)"}.get(d.state, "")
-    return f"{name} by {reader.time(d.due_until)}{state}"
+    return f"by {reader.time(d.due_until)}{state}"
 
 
 def skin_line(episodes: Iterable[ShiftFigures], reader: Reader) -> str:

@@ -6,10 +6,25 @@ from dataclasses import dataclass
 
 from app import formats
 from app.words.figure_lines import FigureLines
+from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
 from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure
 
-HEADINGS = ("Time", "Site", "pH", "PaCO2", "PaO2", "HCO3", "P/F", "FiO2", "State", "Against the last change")
+PLUS_MINUS = "+/\N{MINUS SIGN}"
+HEADINGS = (
+    "Time",
+    "Site",
+    "pH",
+    PLUS_MINUS,
+    "PaCO2",
+    PLUS_MINUS,
+    "PaO2",
+    "HCO3",
+    "P/F",
+    "FiO2",
+    "State",
+    "Against the last change",
+)
 NO_VALUE = "-"
 
 
@@ -58,10 +73,10 @@ def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bo
 
     hco3 = g.hco3_mmol_L if g.hco3_mmol_L is not None else g.hco3_calculated_mmol_L
     mark = "" if g.hco3_mmol_L is not None or hco3 is None else "c"
-    state = lines.state(g.state) if g.state else ""
+    state = lines.state(g.state, g.at) if g.state else ""
     marks = [m for m in lines.gas_marks(g) if m != state]
     return GasRow(
-        formats.clock(g.at, lines.reader.zone),
+        lines.reader.time(g.at),
         g.site[:3] + ("?" if g.site_assumed else ""),
         NO_VALUE if g.ph is None else lines.ph(g), _signed(j.delta_ph if j else None, 2),
         lines.paco2(g).removesuffix(f" {unit}") if g.paco2_mmHg is not None else NO_VALUE,
@@ -84,5 +99,5 @@ def _verdict(j: JudgedGas | None, *, is_base: bool) -> str:
     if j is None:
         return "baseline" if is_base else "not used for a verdict"
     timing = {"early": ", early", "late": ", late"}.get(j.timing, "")
-    lost = ", gain lost" if j.since_start.gain_lost else ""
-    return f"{j.verdict or 'not judged'}{lost} ({formats.minutes(j.minutes)}{timing})"
+    verdict = with_loss(j.verdict or "not judged", lost=j.since_start.gain_lost)
+    return f"{verdict} ({formats.minutes(j.minutes)}{timing})"

@@ -30,15 +30,13 @@ class Style:
     bold: bool = False
     ink: str = INK
 
-    def scaled(self, scale: float) -> Style:
-        """The same at another size."""
-        return Style(self.size * scale, self.bold, self.ink)
 
-
-BODY = Style(8.5)
-STRONG = Style(8.5, True)
-SMALL = Style(7.4, False, GREY)
-HEADING = Style(8.5, True)
+LEAST_PRINT = 7.0
+"""No letter is printed smaller, in points, whatever the page's scale."""
+BODY = Style(7.8)
+STRONG = Style(7.8, True)
+SMALL = Style(7.2, False, GREY)
+HEADING = Style(7.8, True)
 TITLE = Style(17, True)
 SUBTITLE = Style(9.5)
 
@@ -92,7 +90,7 @@ class Press:
     ) -> float:
         """Set a text in a width, wrapped; its height."""
         high = self.height(text, style, width, align)
-        self.painter.setFont(_font(round(style.size * self.scale * self.unit), style.bold))
+        self.painter.setFont(_font(self._pixels(style), style.bold))
         self.painter.setPen(QColor(style.ink))
         rect = QRectF(x * self.unit, y * self.unit, width * self.unit, (high + 2) * self.unit)
         self.painter.drawText(rect, self._flags(text, style, width, align), text)
@@ -141,10 +139,13 @@ class Press:
             pen.setDashPattern(list(dashes))
         return pen
 
+    def _pixels(self, style: Style) -> int:
+        return round(max(style.size * self.scale, LEAST_PRINT) * self.unit)
+
     def _metric(self, style: Style) -> QFontMetricsF:
         found = self._metrics.get(style)
         if found is None:
-            font = _font(round(style.size * self.scale * self.unit), style.bold)
+            font = _font(self._pixels(style), style.bold)
             found = self._metrics[style] = QFontMetricsF(font, self.painter.device())
         return found
 

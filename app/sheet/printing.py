@@ -14,12 +14,13 @@ from app.sheet.pages import Fitted, Room, draw_episode, draw_overflow, fit_episo
 from app.sheet.press import SMALL, SUBTITLE, TITLE, Align, Press, Style
 from app.sheet.shapes import EpisodePage, SheetContent
 from app.sheet.ward_sheet import draw_ward, split_ward
+from app.whole_file import write_whole
 from core.record.message import refuse
 
 PAPERS: Final = {"A4": QPageSize.PageSizeId.A4, "Letter": QPageSize.PageSizeId.Letter}
 DOTS_PER_INCH: Final = 1200
-_MARGIN: Final = 32.0
-_HEAD, _FOOT = 40.0, 27.0
+_MARGIN: Final = 28.0
+_HEAD, _FOOT = 36.0, 27.0
 _SUBTITLE = 15.0
 """The height of the line under a title, which the ward's page does without."""
 
@@ -32,13 +33,7 @@ def write_pdf(content: SheetContent, path: Path, paper: str = "A4") -> int:
         RecordError: `handover.paper` for a paper that is not known.
     """
     data, pages = pdf_bytes(content, paper)
-    unfinished = path.with_name(path.name + ".unfinished")
-    try:
-        unfinished.write_bytes(data)
-        unfinished.replace(path)
-    except OSError as error:
-        unfinished.unlink(missing_ok=True)
-        raise type(error)(error.errno, error.strerror, str(path)) from None
+    write_whole(path, data)
     return pages
 
 
@@ -93,7 +88,7 @@ class _Job:
     ) -> None:
         self._content, self._device, self._press = content, device, press
         self._page_width, self._page_height = width, height
-        self._signed = Signatures(content.given_by, content.taken_by)
+        self._signed = Signatures(content.given_by, content.taken_by, content.signed_at)
         self._left, self._width = _MARGIN, width - 2 * _MARGIN
         self._top, self._bottom = _MARGIN + _HEAD, height - _MARGIN - _FOOT
         self._ward_top = self._top - _SUBTITLE
@@ -102,7 +97,7 @@ class _Job:
         self._ward = ward
         self._room = Room(self._width, self._bottom - self._top, content.gas_unit, self._signed)
         self._fitted = [fit_episode(page, press, self._room) for page in content.episodes]
-        self._pages = len(ward) + sum(2 if f.overflow else 1 for f in self._fitted)
+        self._pages = len(ward) + sum(1 + len(f.overflow) for f in self._fitted)
 
     def run(self) -> int:
         c, w = self._content, self._content.ward
@@ -117,9 +112,9 @@ class _Job:
     def _episode(self, page: EpisodePage, fitted: Fitted) -> None:
         self._begin(page.label, page.subtitle, page.standing)
         draw_episode(fitted, self._press, self._left, self._top, self._bottom, self._room)
-        if fitted.overflow:
+        for blocks in fitted.overflow:
             self._begin(f"{page.label}, continued", page.subtitle, page.standing)
-            draw_overflow(fitted, self._press, self._left, self._top, self._width)
+            draw_overflow(fitted, blocks, self._press, self._left, self._top, self._width)
 
     def _begin(self, title: str, subtitle: str, standing: str) -> None:
         """A new page with its head and foot."""
@@ -142,13 +137,13 @@ class _Job:
         p.line(left, rule, left + wide, rule, 1.4)
         if subtitle:
             line = f"{subtitle}. {self._content.ward.shift}"
-            size = SUBTITLE if p.width(line, SUBTITLE) <= wide else SMALL
+            size = next((s for s in (SUBTITLE, Style(8.5)) if p.width(line, s) <= wide), SMALL)
             p.text(left, _MARGIN + 15, wide, _on_one_line(p, line, size, wide), size)
 
     def _draw_foot(self) -> None:
         p, c, top = self._press, self._content, self._page_height - _MARGIN - _FOOT + 8
         p.line(self._left, top, self._left + self._width, top, 0.5)
-        foot = Style(6.6)
+        foot = Style(7.2)
         p.text(self._left, top + 2.5, self._width, c.caution, foot)
         under = top + 2.5 + p.height(c.caution, foot, self._width) + 1
         p.text(self._left, under, self._width * 0.8, f"{c.printed}. {c.head}.", foot)

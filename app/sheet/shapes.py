@@ -4,13 +4,10 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from app.caution_texts import CAUTION
 from app.sheet.chart_data import ShiftChart
 from app.sheet.gas_table import GasRow
 
-CAUTION = (
-    "Supports and never replaces clinical judgement. It is no alarm and no monitor. Local policy and licensed "
-    "practice come first. Sources marked 'from memory' or 'common practice' are to be confirmed locally."
-)
 Fact = tuple[str, str]
 
 
@@ -24,6 +21,10 @@ class FlagLine:
     source: str
     is_open: bool
     is_strongest: bool = True
+    marker: str = ""
+    """Its name and tier alone, e.g. `SpO2 below range (concern)`."""
+    spell: str = ""
+    """From when until when it was met, or when and by whom it was settled."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -34,6 +35,8 @@ class ChangeLine:
     what: str
     response: str
     verdict: str = ""
+    brief: str = ""
+    """What it did in a few words, for a page that has no room for all of them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,11 +76,33 @@ class WardPage:
     see_first: str
     rows: tuple[WardRow, ...]
     due: tuple[str, ...]
+    """Gases that are due, a line each."""
     missing: tuple[str, ...]
     skin: str = ""
     """All checks of the skin that are due, in one line."""
     quiet: str = ""
     """That nothing was logged for any episode since a moment well before the shift's end; "" elsewhere."""
+    due_other: tuple[str, ...] = ()
+    """Other due items, a line for each kind."""
+    compared: str = ""
+    """What the pages of the episodes are compared with: the last closed handover, or the shift's start."""
+
+
+@dataclass(frozen=True, slots=True)
+class PageBrevity:
+    """How much of a page is said shorter or left out so that it fits; what is left out is said to be."""
+
+    weaker_evidence: bool = False
+    """Evidence of flags that stand under a stronger one is left to the record."""
+    checks: int = 0
+    """So many things to check are left out, the last first."""
+    changes: int = 0
+    """So many of the oldest changes stand in one paragraph with their verdict alone."""
+    changes_out: int = 0
+    gases_out: int = 0
+    """So many of the oldest are left out."""
+    evidence_of: frozenset[str] = frozenset({"escalate", "concern", "remark"})
+    """Tiers whose flags stand with their evidence; that of the others is left to the record."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -90,24 +115,26 @@ class EpisodePage:
     tier: str
     standing: str
     facts: tuple[Fact, ...]
-    settings: str
+    support: tuple[Fact, ...]
+    """Since when, hours on the mask, settings now, leak and interface."""
     changes: tuple[ChangeLine, ...]
     chart: ShiftChart
     gases: tuple[GasRow, ...]
-    leak: str
     flags: tuple[FlagLine, ...]
     due: tuple[str, ...]
     care: tuple[Fact, ...]
     told: tuple[str, ...]
-    plan: str
-    jobs: str
+    """Calls made, each with whom and the answer."""
+    plan: tuple[Fact, ...]
+    """If this by then, do that; agreed with whom; breaks and night; jobs not done."""
     remark: str
     to_check: tuple[str, ...]
-    left_out_changes: int = 0
-    left_out_gases: int = 0
-    left_out_flags: int = 0
-    left_out_checks: int = 0
-    left_out_evidence: int = 0
+    levers: tuple[str, ...] = ()
+    """What could act, each with its reason and what limits it."""
+    since_head: str = ""
+    since: tuple[str, ...] = ()
+    """What is otherwise than was handed over, a sentence each."""
+    brief: PageBrevity = PageBrevity()
 
 
 @dataclass(frozen=True, slots=True)
@@ -122,3 +149,5 @@ class SheetContent:
     taken_by: str = ""
     caution: str = CAUTION
     gas_unit: str = "mmHg"
+    signed_at: str = ""
+    """When it was given and taken, for one that is closed; "" leaves room to write it."""

@@ -9,8 +9,9 @@ from app.sheet.blocks import Block, Heading, Signatures, Text, draw_all, draw_ti
 from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Align, Press, Style
 from app.sheet.shapes import WardPage, WardRow
 
-SCALES = (1.08, 1.04, 1.0, 0.96, 0.92, 0.88, 0.85, 0.82, 0.79, 0.77, 0.75)
-LABEL = Style(11, True)
+SCALES = (1.06, 1.03, 1.0, 0.97, 0.94, 0.92, 0.9)
+LABEL = Style(10, True)
+_FIRST = Style(9.5, True)
 _TIER = 50.0
 _MANY = 24
 """More due items than these stand in four columns of small print."""
@@ -18,9 +19,15 @@ _MANY = 24
 
 @dataclass(frozen=True, slots=True)
 class RowBlock:
-    """One episode: bed and person; the last gas and the support; the response; its flags, one line each."""
+    """One episode: bed and person; the last gas and the support; the response; its flags, one line each. `brief`
+    leaves out the response where nothing of concern is open: it stands on the episode's own page."""
 
     row: WardRow
+    brief: bool = False
+
+    @property
+    def _response(self) -> str:
+        return "" if self.brief else self.row.response
 
     def _about(self) -> str:
         r = self.row
@@ -79,8 +86,8 @@ class RowBlock:
     def height(self, press: Press, width: float) -> float:
         return (
             self._title_height(press, width) + self._gas_height(press, width)
-            + press.height(self.row.response, self._response_style(), width)
-            + self._flags_height(press, width) + press.gap(6)
+            + (press.height(self._response, self._response_style(), width) if self._response else 0.0)
+            + self._flags_height(press, width) + press.gap(4)
         )  # fmt: skip
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
@@ -97,7 +104,7 @@ class RowBlock:
         else:
             press.text(x, y + press.height(r.state, STRONG, width), width, r.support, BODY)
         y += self._gas_height(press, width)
-        y += press.text(x, y, width, r.response, self._response_style())
+        y += press.text(x, y, width, self._response, self._response_style()) if self._response else 0.0
         y = self._draw_flags(press, x, y + press.gap(1), width)
         press.line(x, y + press.gap(2), x + width, y + press.gap(2), 0.3, LINE)
 
@@ -124,13 +131,13 @@ class SeeFirst:
     words: str
 
     def height(self, press: Press, width: float) -> float:
-        return press.height(self.words, Style(11, True), width - press.gap(90)) + press.gap(17)
+        return press.height(self.words, _FIRST, width - press.gap(80)) + press.gap(14)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         high = self.height(press, width) - press.gap(6)
         press.box(x, y, width, high, fill=PALE, weight=1.2)
-        press.text(x + press.gap(8), y + press.gap(5.5), press.gap(80), "See first", Style(11))
-        press.text(x + press.gap(74), y + press.gap(5.5), width - press.gap(84), self.words, Style(11, True))
+        press.text(x + press.gap(8), y + press.gap(4.2), press.gap(80), "See first", Style(_FIRST.size))
+        press.text(x + press.gap(64), y + press.gap(4.2), width - press.gap(74), self.words, _FIRST)
 
 
 @dataclass(frozen=True, slots=True)
@@ -168,21 +175,26 @@ class DueList:
                 top += self._high(press, item, width)
 
 
-def ward_blocks(page: WardPage) -> list[Block]:
-    """The page's blocks from top to bottom, without signatures."""
+def ward_blocks(page: WardPage, *, brief: bool = False) -> list[Block]:
+    """The page's blocks from top to bottom, without signatures; `brief` where there are many quiet episodes."""
     blocks: list[Block] = [SeeFirst(page.see_first)]
     if page.quiet:
         blocks.append(Text(f"{page.quiet[:1].upper()}{page.quiet[1:]}.", STRONG))
     blocks.append(Heading("All episodes, in order of concern", f"{len(page.rows)} in this shift"))
-    blocks += [RowBlock(r) for r in page.rows] or [Text("No episode stood in this shift.")]
+    rows = [RowBlock(r, brief and r.tier not in ("escalate", "concern") and not r.is_grave) for r in page.rows]
+    blocks += rows or [Text("No episode stood in this shift.")]
     blocks.append(Heading("Due in the next 4 h, and overdue", "gases first, the longest overdue on top"))
     if page.due:
         blocks.append(DueList(page.due))
-    if page.skin or not page.due:
-        blocks.append(Text(page.skin or "Nothing is due.", SMALL if page.skin else BODY))
-    if page.missing:
-        blocks.append(Heading("Missing from the record"))
-        blocks.append(Text(" ".join(page.missing), SMALL))
+    blocks += [Text(f"{line}.") for line in page.due_other]
+    if page.skin or not (page.due or page.due_other):
+        blocks.append(Text(page.skin or "Nothing is due."))
+    small = [f"Missing from the record: {' '.join(page.missing)}"] if page.missing else []
+    small += [page.compared] if page.compared else []
+    if any(r.brief for r in rows):
+        small.append("Responses of episodes without a flag of concern stand on their own pages.")
+    if small:
+        blocks.append(Text(" ".join(small), SMALL))
     return blocks
 
 
@@ -190,11 +202,12 @@ def split_ward(
     page: WardPage, press: Press, width: float, high: float, signed: Signatures
 ) -> list[tuple[float, list[Block]]]:
     """The ward's blocks as pages: one where any scale lets it fit, else as many as the smallest needs."""
-    blocks = ward_blocks(page)
-    for scale in SCALES:
-        at = press.at_scale(scale)
-        if height_of(blocks, at, width) + signed.height(at, width) <= high:
-            return [(scale, blocks)]
+    for brief in (False, True):
+        blocks = ward_blocks(page, brief=brief)
+        for scale in SCALES if not brief else SCALES[-1:]:
+            at = press.at_scale(scale)
+            if height_of(blocks, at, width) + signed.height(at, width) <= high:
+                return [(scale, blocks)]
     at = press.at_scale(SCALES[-1])
     pages: list[tuple[float, list[Block]]] = []
     current: list[Block] = []

@@ -5,11 +5,12 @@ A shift runs from `start` (not included) to `end` (included), so that a moment b
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from typing import Final
 
-from core.figures.episode_figures import episode_figures
+from core.figures.episode_figures import episode_figures, gas_stage, record_stage
 from core.judgement.policy import Policy
 from core.judgement.setting_change import changed
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, ResponseFigure, Step
@@ -17,7 +18,7 @@ from core.record.channels import CHANNELS, Group
 from core.record.episode import Episode, Words
 from core.record.instant import HOUR, Instant
 from core.record.settings import SettingsInForce
-from core.record.support import Break, support_time
+from core.record.support import Break
 
 DUE_AHEAD: Final = 4 * HOUR
 """Due items of this long after the shift's end are handed over."""
@@ -68,6 +69,8 @@ class ShiftFigures:
     """Typed entries of the shift that were recorded more than an hour after they happened; a file's are none."""
     began: bool = False
     ended: bool = False
+    target: tuple[float, float] = (math.nan, math.nan)
+    """The SpO2 range in force, %: the prescribed one, else the one that the patient's risk calls for."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -111,9 +114,8 @@ def episode_shift(episode: Episode, start: Instant, end: Instant, policy: Policy
     if end <= start:
         raise ValueError(f"shift from {start} to {end}: its end must lie after its start")
     now = episode_figures(episode, end, policy)
-    cut = episode.until(end)
-    settings = SettingsInForce(cut)
-    support = support_time(cut, settings)
+    ctx = gas_stage(record_stage(episode, end, policy))
+    cut, settings, support = ctx.episode, ctx.settings, ctx.support
     responses = tuple(r for r in now.responses if any(_inside(s.at, start, end) for s in _steps(r)))
     before = [g for g in now.gases if g.at <= start]
     judged_before = [g for g in before if g.site != "venous"]
@@ -135,6 +137,7 @@ def episode_shift(episode: Episode, start: Instant, end: Instant, policy: Policy
         recorded_late=_recorded_late(cut, start, end),
         began=support.start is not None and _inside(support.start, start, end),
         ended=support.end is not None and _inside(support.end, start, end),
+        target=(ctx.target.low, ctx.target.high),
     )  # fmt: skip
 
 

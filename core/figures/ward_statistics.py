@@ -31,7 +31,7 @@ START_CLOCKS: Final[Mapping[str, str]] = {
     "decision_to_start": "decided_at",
     "arrival_to_start": "arrived_at",
 }
-"""The clocks to the start of support, each with the fact of the profile it runs from. Their limits are the policy's."""
+"""The clocks to the start of support, each with the fact of the profile it runs from; the limits are the policy's."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -38,16 +38,18 @@ def test_missing_data_are_said_to_be_missing(tmp_path: Path) -> None:
     content, page = one(tmp_path, "01:00 rr 24")
     facts = dict(page.facts)
     assert facts["Why on support"] == "not recorded"
-    assert facts["Support"] == "start of support not recorded"
+    assert dict(page.support)["Support"] == "start of support not recorded"
     assert facts["SpO2 target"].startswith("not recorded")
     assert facts["Ceiling of care"] == facts["Resuscitation"] == facts["Responsible"] == "not recorded"
     assert page.standing == "No arterial or capillary gas recorded."
-    assert page.plan == page.jobs == "not recorded"
+    assert {value for _, value in page.plan} == {"not recorded"}
+    assert [name for name, _ in page.plan] == ["Plan", "Agreed with", "Breaks and night", "Jobs not done"]
     assert dict(page.care)["Secretions"] == "nothing recorded this shift"
     assert not page.gases
     assert not page.changes
-    assert page.settings.startswith("mode not recorded")
-    assert "FiO2 not known" in page.settings
+    settings = dict(page.support)["Settings now"]
+    assert settings.startswith("mode not recorded")
+    assert "FiO2 not known" in settings
     for word in ("handover remark", "plan", "ceiling of care", "resuscitation decision"):
         assert f"No {word} recorded for any episode." in content.ward.missing
 
@@ -92,7 +94,7 @@ def test_a_gas_off_support_is_the_gas_and_not_the_patient(tmp_path: Path) -> Non
 
 
 def test_oxygen_that_fails_comes_first(content: SheetContent) -> None:
-    assert row(content, "Bay A 1").state.startswith("Hypoxaemic: P/F 107 mmHg, not acidotic: pH 7.40")
+    assert row(content, "Bay A 1").state.startswith("Hypoxaemic: P/F 107 mmHg; not acidotic: pH 7.40")
     page = next(p for p in content.episodes if p.label == "Bay A 1")
     assert {g.state for g in page.gases} == {"not acidotic"}
 
@@ -102,7 +104,7 @@ def row(content: SheetContent, label: str) -> WardRow:
 
 
 def test_a_relapse_and_the_sum_since_the_start_stand_on_the_first_page(content: SheetContent) -> None:
-    assert "Better, gain lost: pH" in row(content, "Bed 5").response
+    assert "Gain lost, still better: pH" in row(content, "Bed 5").response
     assert "No clear change (since the start: worse): pH" in row(content, "Bed 4").response
     assert "No clear change (since the start: better): pH" in row(content, "Bed 2").response
 
@@ -110,7 +112,7 @@ def test_a_relapse_and_the_sum_since_the_start_stand_on_the_first_page(content: 
 def test_plan_and_call_stand_on_the_first_page_where_something_is_to_be_done(content: SheetContent) -> None:
     assert row(content, "Bed 4").action.startswith("Plan: If pH is below 7.25 on the next gas: intensive care")
     assert "Told: 04:37 medical registrar" in row(content, "Bed 4").action
-    assert row(content, "Bay A 4").action == "Plan: none. Told: nobody."
+    assert row(content, "Bay A 4").action == "Plan: not recorded. Told: not recorded."
     assert row(content, "Bed 1").action == ""
     text = handover_text(content)
     assert "Plan: If pH is below 7.25" in text.partition("DUE IN THE NEXT")[0]
@@ -120,10 +122,14 @@ def test_gases_are_due_first_the_longest_overdue_on_top_and_skin_checks_in_one_l
     due = content.ward.due
     gases = [n for n, line in enumerate(due) if "lood gas" in line]
     assert gases == list(range(len(gases)))
-    assert due[0] == "Bay A 4: Repeat blood gas 2 h 08 min OVERDUE"
+    assert due[0] == "Bay A 4: Repeat blood gas OVERDUE 2 h 08 min"
     late = ["OVERDUE" in line for line in due[: len(gases)]]
     assert late == sorted(late, reverse=True)
-    assert not any("kin check" in line for line in due)
+    others = content.ward.due_other
+    kinds = [line.partition(":")[0] for line in others]
+    assert kinds == ["Ask about a probable break", "Oxygen review", "Reassessment"]
+    assert others[1].startswith("Oxygen review: Bed 3 OVERDUE 2 h 39 min; Bay A 4 OVERDUE")
+    assert not any("kin check" in line for line in (*due, *others))
     assert content.ward.skin.startswith("Skin checks overdue: Bed 2, Bay A 2, ")
     assert "Skin checks to come: Bed 1 by 05:32" in content.ward.skin
     assert content.ward.skin.split()[-1] in handover_text(content)
@@ -132,19 +138,19 @@ def test_gases_are_due_first_the_longest_overdue_on_top_and_skin_checks_in_one_l
 def test_a_shift_that_ends_after_the_record_says_so_and_its_chart_ends_there(night_store: Store) -> None:
     end = demo.demo_now() + 2 * HOUR
     request = operations.HandoverRequest(end - 12 * HOUR, end)
-    made = operations.prepare(night_store, "AB", demo.demo_now(), request).value
+    made = operations.prepare(night_store, "AB", end, request).value
     found = sheet_content(made, Reader(demo.ZONE))
     assert found.ward.quiet == "nothing logged since 05:30"
     assert "Nothing logged since 05:30" in handover_text(found)
     page = next(p for p in found.episodes if p.label == "Bed 4")
     shift = next(s for s in made.shift.episodes if s.now.label == "Bed 4")
     assert page.chart.end == shift.now.now.last_logged_at < end
-    assert dict(page.facts)["Record"].startswith("nothing logged since 05:")
+    assert dict(page.support)["Record"].startswith("nothing logged since 05:")
 
 
 def test_a_shift_that_ends_now_needs_no_such_words(content: SheetContent) -> None:
     assert content.ward.quiet == ""
-    assert "Record" not in dict(content.episodes[0].facts)
+    assert "Record" not in dict(content.episodes[0].support)
 
 
 def test_a_file_taken_in_late_is_not_counted_as_typed_late(tmp_path: Path) -> None:
@@ -154,7 +160,7 @@ def test_a_file_taken_in_late_is_not_counted_as_typed_late(tmp_path: Path) -> No
 
 def test_off_the_mask_is_said_loudly(tmp_path: Path) -> None:
     content, page = one(tmp_path, "00:40 bpap-st 14/5 28", "04:10 mask off")
-    assert "OFF THE MASK since 04:10" in page.settings
+    assert "OFF THE MASK since 04:10" in dict(page.support)["Settings now"]
     assert content.ward.rows[0].support == "OFF THE MASK since 04:10"
     assert dict(page.facts)["Mask this shift"] == "3.5 h; off 04:10 to now"
 
@@ -163,11 +169,14 @@ def test_told_remark_plan_and_jobs_are_handed_on(tmp_path: Path) -> None:
     _, page = one(
         tmp_path,
         "01:00 bpap-st 14/5 28", "02:00 told registrar, will come", "plan if pH below 7.25 by 06:00 call ICU",
-        "jobs chest film", "handover remark tired but settled", "03:00 secretions", "03:05 comfort poor",
+        "jobs chest film", "agreed with Dr Reg", "breaks and night 20 min for meals, none at night",
+        "handover remark tired but settled", "03:00 secretions", "03:05 comfort poor",
     )  # fmt: skip
     assert page.told == ("02:00 registrar, will come",)
-    assert page.plan == "if pH below 7.25 by 06:00 call ICU"
-    assert page.jobs == "chest film"
+    assert dict(page.plan)["Plan"] == "if pH below 7.25 by 06:00 call ICU"
+    assert dict(page.plan)["Jobs not done"] == "chest film"
+    assert dict(page.plan)["Agreed with"] == "Dr Reg"
+    assert dict(page.plan)["Breaks and night"] == "20 min for meals, none at night"
     assert page.remark == "tired but settled"
     assert dict(page.care)["Secretions"] == "03:00 recorded"
     assert dict(page.care)["Tolerance"] == "poor"
@@ -188,7 +197,8 @@ def test_nothing_printed_has_a_hole(content: SheetContent) -> None:
     for row in content.ward.rows:
         said += [row.state, row.support, row.response, row.who, row.limits, row.remarks, *row.flags]
     for page in content.episodes:
-        said += [page.settings, page.leak, page.plan, *page.due, *page.told, *page.to_check]
+        said += [*(v for _, v in (*page.support, *page.plan, *page.care)), *page.due, *page.told, *page.to_check]
+        said += [page.since_head, *page.since, *page.levers, *(c.brief for c in page.changes)]
         said += [f.head + f.evidence + f.source for f in page.flags]
         said += [c.what + c.response for c in page.changes]
     for text in said:

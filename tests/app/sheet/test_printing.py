@@ -11,15 +11,22 @@ import pytest
 from pypdf import PdfReader
 from PySide6.QtWidgets import QApplication
 
+from app.formats import ABSENT
 from app.operations import handover as operations
 from app.operations.outcome import CancelledError, watched
 from app.plain_handover import handover_text
 from app.sheet.gas_table import GasRow
+from app.sheet.press import LEAST_PRINT
 from app.sheet.printing import PAPERS, pdf_bytes, write_pdf
 from app.sheet.shapes import ChangeLine, FlagLine, SheetContent
 from core.record.message import RecordError
 from storage.store import Store
 
+HEADINGS = (
+    "Settings now", "Leak, interface", "What changed", "Changes this shift and their responses",
+    "The shift on one clock", "Gases",
+    "Flags, open and settled", "Due in the next 4 h", "Levers that could act", "Plan, calls", "Care",
+)  # fmt: skip
 SIZES = {"A4": (595, 842), "Letter": (612, 792)}
 pytestmark = pytest.mark.usefixtures("application")
 
@@ -65,39 +72,65 @@ def test_the_wards_page_says_all_of_every_episode(printed: tuple[str, bytes], co
     assert _flat(f"See first {ward.see_first}") in text
     assert ward.see_first.startswith("Bed 4"), "the patient who must be escalated comes first"
     for row in ward.rows:
-        for part in (f"{row.number} {row.label}", row.who, row.state, row.support, row.response, row.limits):
+        for part in (f"{row.number} {row.label}", row.who, row.state, row.support, row.limits):
             assert _flat(part) in text, part
+        quiet = row.tier not in ("escalate", "concern") and not row.is_grave
+        told = "Responses of episodes without a flag of concern stand on their own pages."
+        elsewhere = quiet and _flat(told) in text
+        assert _flat(row.response) in text or elsewhere, row.label
         for flag in row.flags:
             tier, _, words = flag.partition(" ")
             assert _flat(tier + words) in text
         assert _flat(row.remarks) in text
     assert all(_flat(r.action) in text for r in ward.rows)
-    for item in (*ward.due, ward.skin, *ward.missing):
+    for item in (*ward.due, *ward.due_other, ward.skin, *ward.missing, ward.compared):
         assert _flat(item) in text, item
 
 
 def test_an_episodes_page_says_all_that_is_handed_over(printed: tuple[str, bytes], content: SheetContent) -> None:
     for text, page in zip(pages_of(printed[1])[1:], content.episodes, strict=True):
         assert text.startswith(_flat(page.label))
-        parts = [page.subtitle, page.standing, page.settings, page.leak, page.plan, page.jobs, *page.due, *page.told]
-        parts += [x for fact in (*page.facts, *page.care) for x in fact]
-        parts += [x for c in page.changes[-4:] for x in (c.at, c.what, c.response)]
+        parts = [page.subtitle, page.standing, *page.due, *page.told, *page.levers, page.since_head, *page.since]
+        parts += [x for fact in (*page.facts, *page.support) for x in fact]
+        parts += [x for fact in (*page.plan, *page.care) if fact[1] != ABSENT for x in fact]
+        parts += [x for c in page.changes[-1:] for x in (c.at, c.what, c.response)]
         parts += [f.head.partition(" ")[2] for f in page.flags if f.is_open]
-        parts += [f.evidence + " " + f.source for f in page.flags if f.is_open and f.is_strongest]
+        strong = (f for f in page.flags if f.tier == "escalate" and f.is_open and f.is_strongest)
+        parts += [f"{f.evidence} {f.source}" for f in strong]
+        parts += [x for f in page.flags if not f.is_open for x in (f.marker, f.spell)]
         for part in parts:
             assert _flat(part) in text, (page.label, part)
-        for g in page.gases[-3:]:
-            row = [g.at, g.site, f"{g.ph} ({g.delta_ph})" if g.delta_ph else g.ph, g.state, g.verdict]
+        for name in (n for n, value in (*page.plan, *page.care) if value == ABSENT):
+            assert _flat(name).lower() in text.lower(), "what was not recorded is named"
+        for g in page.gases[-5:]:
+            values = f"{g.ph} {g.delta_ph} {g.paco2} {g.delta_paco2} {g.pao2} {g.hco3}"
+            row = [g.at, g.site, values, g.state, g.verdict]
             assert all(_flat(cell) in text for cell in row), (page.label, row)
-        for heading in ("Settings now", "Changes this shift and their responses", "The shift on one clock", "Gases",
-                        "Flags", "Due in the next 4 h", "Plan and care", "Remark"):  # fmt: skip
-            assert _flat(heading) in text
+        for change in page.changes[:-1]:
+            assert _flat(change.response) in text or _flat(change.brief) in text, "every change has its verdict"
+        for heading in (*HEADINGS, "Remark", "Given by", "Taken by", "Time"):
+            assert _flat(heading) in text, heading
+
+
+def test_no_letter_is_smaller_than_can_be_read(printed: tuple[str, bytes]) -> None:
+    """Sizes of the drawn letters, from the matrices of the PDF; DejaVu's small letters are high for their size."""
+    sizes: set[float] = set()
+
+    def note(text: str, cm: list[float], tm: list[float], font: object, size: float) -> None:
+        if text.strip():
+            sizes.add(round(size * abs(tm[3] * cm[3]), 2))
+
+    for page in PdfReader(BytesIO(printed[1])).pages:
+        page.extract_text(visitor_text=note)
+    assert min(sizes) >= LEAST_PRINT - 0.05, sorted(sizes)[:5]
+    assert max(sizes) > 12
 
 
 def test_certainty_stands_beside_every_source(content: SheetContent) -> None:
     flags = [f for page in content.episodes for f in page.flags]
     assert len(flags) > 20
-    known = r"\[(confirmed|secondary|from memory|computed here|common practice)\]$"
+    sure = "(confirmed|secondary|from memory|computed here|common practice)"
+    known = rf"\[{sure}(; .*{sure})?\]$"
     assert all(re.search(known, f.source) for f in flags)
 
 
@@ -112,7 +145,8 @@ def test_it_is_printed_without_colour(printed: tuple[str, bytes]) -> None:
 def test_plain_text_has_the_same_words(content: SheetContent) -> None:
     text = _flat(handover_text(content))
     for page in content.episodes:
-        parts = [page.settings, page.leak, page.standing, *(v for _, v in page.facts), *page.due]
+        parts = [page.standing, *(v for _, v in (*page.facts, *page.support, *page.plan, *page.care)), *page.due]
+        parts += [page.since_head, *page.since, *page.levers]
         parts += [f.head for f in page.flags] + [c.response for c in page.changes]
         for part in parts:
             assert _flat(part).replace("\N{MINUS SIGN}", "-") in text, part
@@ -120,52 +154,85 @@ def test_plain_text_has_the_same_words(content: SheetContent) -> None:
     assert handover_text(content).isascii() or "\N{MINUS SIGN}" not in handover_text(content)
 
 
-def crowded(content: SheetContent, *, flags: int, changes: int, words: str) -> SheetContent:
+def crowded(content: SheetContent, *, flags: int, changes: int, words: str, strongest: bool = False) -> SheetContent:
     """The first episode with more of everything than a page can hold."""
     page = content.episodes[0]
-    change = ChangeLine("03:00", "IPAP 18 to 20 cmH2O", words, "better")
+    change = ChangeLine("03:00", "IPAP 18 to 20 cmH2O", words, "better", "03:00 IPAP 18 to 20 cmH2O: better")
     gas = GasRow("03:10", "art", "7.31", "+0.04", "62", "-6", "66", "31.2", "201", "30 %", "acidotic", "better (1 h)")
-    flag = FlagLine("concern", "CONCERN open flag", words, "source [confirmed]", True, False)
+    flag = FlagLine("concern", "CONCERN open flag", words, "source [confirmed]", True, strongest)
     made = replace(page, flags=tuple(replace(flag, head=f"CONCERN open flag {n}") for n in range(flags)),
                    changes=(change,) * changes, gases=(gas,) * 30, remark=words)  # fmt: skip
     return replace(content, episodes=(made,))
 
 
-def test_too_many_rows_are_left_out_from_the_oldest_and_it_is_said(content: SheetContent) -> None:
-    data, pages = pdf_bytes(crowded(content, flags=3, changes=60, words="Better: pH +0.04 after 1 h."), "Letter")
+def test_the_fullest_page_is_one_page_and_says_what_it_leaves_out(content: SheetContent) -> None:
+    data, pages = pdf_bytes(crowded(content, flags=3, changes=300, words="Better: pH +0.04 after 1 h."), "Letter")
     assert pages == 2
     text = pages_of(data)[1]
-    assert _flat("earlier changes not shown: see the record") in text
-    assert _flat("gases not shown: see the record") in text
+    assert re.search(_flat(r"\d+ earlier changes not shown: see the record"), text)
+    assert _flat("25 earlier gases not shown: see the record") in text
+    assert _flat("Earlier, by verdict alone: 03:00 IPAP 18 to 20 cmH2O: better;") in text
     assert all(_flat(f"open flag {n}") in text for n in range(3))
 
 
+def test_twenty_changes_keep_their_verdicts_on_one_page(content: SheetContent) -> None:
+    """What has no room for its words stands by its verdict: every change of the shift is there."""
+    full = crowded(content, flags=2, changes=20, words="Better: pH +0.04 after 1 h.")
+    changes = tuple(replace(c, brief=f"change {n:02d}: better", what=f"what {n:02d}")
+                    for n, c in enumerate(full.episodes[0].changes))  # fmt: skip
+    data, pages = pdf_bytes(replace(full, episodes=(replace(full.episodes[0], changes=changes),)), "Letter")
+    assert pages == 2
+    text = pages_of(data)[1]
+    for n in range(20):
+        assert f"change{n:02d}:better" in text or f"what{n:02d}" in text, n
+    assert "changesnotshown" not in text
+
+
 def test_open_flags_are_never_left_out(content: SheetContent) -> None:
-    data, pages = pdf_bytes(crowded(content, flags=60, changes=60, words="x " * 200), "Letter")
-    assert pages == 3
-    both = " ".join(pages_of(data)[1:])
-    assert "continued" in both
-    assert all(f"openflag{n}." in both for n in range(60))
+    data, _ = pdf_bytes(crowded(content, flags=60, changes=60, words="x " * 200), "Letter")
+    text = "".join(pages_of(data)[1:])
+    assert all(re.search(f"openflag{n}[;.]", text) for n in range(60))
+    assert _flat("Evidence and sources of the flags of concern: see the record.") not in text, "none is the strongest"
+
+
+def test_what_no_words_make_fit_goes_on_on_further_pages_and_says_so(content: SheetContent) -> None:
+    data, pages = pdf_bytes(crowded(content, flags=90, changes=60, words="x " * 200, strongest=True), "Letter")
+    texts = pages_of(data)[1:]
+    assert pages > 2
+    assert _flat("Goes on on the next page.") in texts[0]
+    assert all("continued" in t for t in texts[1:])
+    assert all(re.search(f"openflag{n}\\D", "".join(texts)) for n in range(90))
+
+
+def test_a_remark_longer_than_a_page_is_printed_whole(content: SheetContent) -> None:
+    words = "\n".join(f"line{n} of what was typed by hand" for n in range(150))
+    page = replace(content.episodes[0], remark=words)
+    data, pages = pdf_bytes(replace(content, episodes=(page,)))
+    text = "".join(pages_of(data))
+    assert all(_flat(f"line{n} of what") in text for n in range(150))
+    assert pages > 2
+    assert _flat("the remark stands on the next page") in text
 
 
 def test_a_very_long_word_is_broken_and_not_clipped(content: SheetContent) -> None:
     word = "W" * 300
-    page = replace(content.episodes[0], plan=word, label="Bed " + "9" * 80, remark="first line\nsecond line")
-    data, _ = pdf_bytes(replace(content, episodes=(page,)))
-    text = pages_of(data)[1]
+    long = {"plan": (("Plan", word),), "label": "Bed " + "9" * 80, "remark": "first line\nsecond line"}
+    data, _ = pdf_bytes(replace(content, episodes=(replace(content.episodes[0], **long),)))
+    text = "".join(pages_of(data)[1:])
     assert text.count("W") >= 300
     assert _flat("first line second line") in text
 
 
 def test_markup_in_a_note_stays_text(content: SheetContent) -> None:
-    page = replace(content.episodes[0], plan="<b>bold</b> & <img src=x>", remark="<script>")
+    page = replace(content.episodes[0], plan=(("Plan", "<b>bold</b> & <img src=x>"),), remark="<script>")
     text = pages_of(pdf_bytes(replace(content, episodes=(page,)))[0])[1]
     assert _flat("<b>bold</b> & <img src=x>") in text
     assert "<script>" in text
 
 
 def test_a_ward_with_nobody_says_so(content: SheetContent) -> None:
-    ward = replace(content.ward, rows=(), due=(), missing=(), skin="", see_first="No episode stands out.")
+    nothing = {"rows": (), "due": (), "due_other": (), "missing": (), "skin": ""}
+    ward = replace(content.ward, **nothing, see_first="No episode stands out.")
     data, pages = pdf_bytes(replace(content, ward=ward, episodes=()))
     assert pages == 1
     for words in ("No episode stood in this shift.", "Nothing is due."):

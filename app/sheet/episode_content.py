@@ -1,0 +1,182 @@
+"""What an episode's page of a handover says: what the next shift must know of one patient."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from app import formats
+from app.finding_names import lever_name, marker_name
+from app.later_words import later_sentence
+from app.sheet.chart_data import shift_chart
+from app.sheet.gas_table import gas_rows
+from app.sheet.shapes import ChangeLine, EpisodePage, Fact, FlagLine
+from app.sheet.since_lines import since_head, since_lines
+from app.sheet.writer import SheetWriter, opened, quiet_since, strength
+from app.words import sentence
+from app.words.verdict_loss import with_loss
+from core.figures.shift import ShiftFigures
+from core.judgement.shapes import EpisodeFigures, FlagFigure, Step
+
+MOST_LATER = 8
+"""Values that came later are listed up to so many for each episode."""
+DECIDES = "lever.qualified_person_decides"
+
+
+class EpisodeWriter(SheetWriter):
+    """Writes the page of an episode."""
+
+    def episode(self, number: int, s: ShiftFigures) -> EpisodePage:
+        """The page of one episode, `number` in the order of concern."""
+        f, lines = s.now, self._lines.of(s.now)
+        record = self._h.records[s.episode]
+        shown = sorted(s.flags_open, key=strength)
+        other = [x for x in (*s.flags_raised, *s.flags_ended) if x not in shown]
+        return EpisodePage(
+            f.label, self._subtitle(s), number, shown[0].tier if shown else "", self._standing(f),
+            tuple(self._facts(s)), tuple(self._support(s)), tuple(self._changes(s)),
+            shift_chart(record, f, (s.start, self._chart_end(s)), s.target, self._reader), gas_rows(s, lines),
+            tuple(self._flag(x) for x in (*shown, *dict.fromkeys(other))),
+            tuple(self._lines.due(d) for d in s.due), tuple(self._care(s)),
+            tuple(f"{self._moment(t.at)} {t.words or 'somebody'}" for t in s.told), tuple(self._plan(f)),
+            str(f.profile.get("handover_remark") or ""), tuple(self._to_check(s)), tuple(self._levers(f)),
+            since_head(self._h.handed, self._reader), since_lines(self._h.since[s.episode], lines),
+        )  # fmt: skip
+
+    def _plan(self, f: EpisodeFigures) -> Iterator[Fact]:
+        """If this by then, do that, agreed with whom; breaks and night; what was not done."""
+        for name, channel in (("Plan", "plan"), ("Agreed with", "agreed_with"),
+                              ("Breaks and night", "breaks_and_night"), ("Jobs not done", "jobs")):  # fmt: skip
+            yield name, str(f.profile.get(channel) or formats.ABSENT)
+
+    def _levers(self, f: EpisodeFigures) -> Iterator[str]:
+        """What could act: the reason, then what limits it."""
+        for lever in (x for x in f.levers if x.can_act):
+            limits = (m for m in lever.limits if m.key != DECIDES)
+            why = " ".join(sentence(m, self._reader) for m in (*lever.why, *limits))
+            yield f"{opened(lever_name(lever.key, self._reader))}: {why}"
+
+    @staticmethod
+    def _chart_end(s: ShiftFigures) -> int:
+        """Where the record ends before the shift does, so does the chart: nothing is known after it."""
+        at = quiet_since(s)
+        return at if at is not None and at > s.start else s.end
+
+    def _subtitle(self, s: ShiftFigures) -> str:
+        f = s.now
+        place = f.profile.get("location") or "place not recorded"
+        identifier = f.profile.get("identifier")
+        key = f"Episode {f.episode}" + (f", {identifier}" if identifier else "")
+        return f"{self._who(f)}. {place}. {key}"
+
+    def _facts(self, s: ShiftFigures) -> Iterator[Fact]:
+        p = s.now.profile
+        yield "Why on support", formats.quantity("indication", p.get("indication"))
+        yield "SpO2 target", self._target(s)
+        yield "Ceiling of care", str(p.get("ceiling_of_care") or formats.ABSENT)
+        yield "Resuscitation", str(p.get("resuscitation") or formats.ABSENT)
+        yield "Responsible", str(p.get("contact") or formats.ABSENT)
+        usual = p.get("usual_paco2")
+        yield "Usual PaCO2", self._lines.pressure(usual if isinstance(usual, float) else None)
+        yield "Home support", str(p.get("home_support") or formats.ABSENT)
+        yield "Mask this shift", self._mask_this_shift(s)
+
+    def _support(self, s: ShiftFigures) -> Iterator[Fact]:
+        """Since when, hours on the mask, settings now, leak and interface."""
+        f = s.now
+        yield "Support", self._lines.on_mask(f.support)
+        yield "Settings now", self._support_now(f)
+        yield "Leak, interface", self._lines.leak(f.leak) + self._interface(f)
+        if (at := quiet_since(s)) is not None:
+            yield "Record", f"nothing logged since {self._moment(at)}"
+
+    def _mask_this_shift(self, s: ShiftFigures) -> str:
+        text = formats.hours(s.hours_on_mask)
+        if not s.breaks:
+            return f"{text}, no break recorded"
+        spans = ", ".join(
+            f"{self._moment(b.start)} to {self._moment(b.end) if b.end is not None else 'now'}" for b in s.breaks
+        )
+        return f"{text}; off {spans}"
+
+    @staticmethod
+    def _target(s: ShiftFigures) -> str:
+        low, high = (s.now.profile.get(f"target_spo2_{end}") for end in ("low", "high"))
+        text = f"{formats.trimmed(s.target[0])} to {formats.trimmed(s.target[1])} %"
+        return text if low is not None and high is not None else f"not recorded; {text} by risk"
+
+    def _changes(self, s: ShiftFigures) -> Iterator[ChangeLine]:
+        """Every change of the shift in order of time; what was set with an anchor stands in its line."""
+        beside: dict[int, list[Step]] = {}
+        for step in s.other_changes:
+            beside.setdefault(step.at, []).append(step)
+        rows = []
+        for r in s.responses:
+            what = self._lines.anchor(r)
+            if with_it := beside.pop(r.anchor_at, None):
+                what += f"; with it {self._lines.steps(with_it)}"
+            told = opened(self._lines.of(s.now).verdict(r))
+            short = "support started" if r.anchor == "start" else what
+            brief = f"{self._moment(r.anchor_at)} {short}: {with_loss(r.headline, lost=r.gain_lost)}"
+            line = ChangeLine(self._when(r.first_at, r.anchor_at), what, told, r.headline, brief)
+            rows.append((r.first_at, line))
+        for at, steps in beside.items():
+            told = "Not judged by itself."
+            what = self._lines.steps(steps)
+            brief = f"{self._moment(at)} {what}: not judged by itself"
+            rows.append((at, ChangeLine(self._moment(at), what, told, "", brief)))
+        yield from (line for _, line in sorted(rows, key=lambda x: x[0]))
+
+    def _when(self, first: int, last: int) -> str:
+        return self._moment(last) if first == last else f"{self._moment(first)} to {self._moment(last)}"
+
+    def _interface(self, f: EpisodeFigures) -> str:
+        return f". Interface: {f.support.interface or formats.ABSENT}"
+
+    def _flag(self, x: FlagFigure) -> FlagLine:
+        return FlagLine(x.tier, self._lines.flag_head(x), self._lines.evidence(x), self._lines.certainty(x),
+                        x.state in ("raised", "seen"), x.strongest,
+                        f"{marker_name(x.marker, self._reader)} ({x.tier})", self._spell(x))  # fmt: skip
+
+    def _spell(self, x: FlagFigure) -> str:
+        since = self._moment(x.since)
+        if x.settled_at is not None:
+            by = f" by {x.settled_by}" if x.settled_by else ""
+            why = f": {x.settled_why}" if x.settled_why else ""
+            return f"since {since}, settled {self._moment(x.settled_at)}{by}{why}"
+        undone = ", undone by a correction" if x.undone_by_correction else ""
+        return (
+            f"{since} to {self._moment(x.ended_at)}{undone}" if x.ended_at is not None else f"since {since}{undone}"
+        )
+
+    def _care(self, s: ShiftFigures) -> Iterator[Fact]:
+        record = self._h.records[s.episode].until(s.end)
+        p = s.now.profile
+        yield "Tolerance", record.latest_text("comfort") or formats.ABSENT
+        yield "Secretions", self._newest_event(s, "secretions")
+        yield "Skin", self._newest_event(s, "skin_check")
+        yield "Feeding", str(p.get("feeding") or formats.ABSENT)
+        yield "Isolation", str(p.get("isolation") or formats.ABSENT)
+
+    def _newest_event(self, s: ShiftFigures, channel: str) -> str:
+        found = [e for e in s.events if e.channel == channel]
+        if not found:
+            return "nothing recorded this shift"
+        return f"{self._clock(found[-1].at)} {found[-1].words or 'recorded'}"
+
+    def _to_check(self, s: ShiftFigures) -> Iterator[str]:
+        if s.recorded_late and not self._h.imported:
+            late = "1 typed entry" if s.recorded_late == 1 else f"{s.recorded_late} typed entries"
+            yield f"{late} of this shift {'was' if s.recorded_late == 1 else 'were'} recorded more than 1 h late."
+        yield from self._came_later(s)
+        warnings = [*s.now.warnings, *(w for g in s.gases for w in g.warnings)]
+        yield from dict.fromkeys(sentence(w, self._reader) for w in warnings)
+
+    def _came_later(self, s: ShiftFigures) -> Iterator[str]:
+        """In a review as known at a moment: what was recorded or changed only after it."""
+        told = self._h.later.get(s.episode, ())
+        if not told:
+            return
+        for h in told[:MOST_LATER]:
+            yield f"Not known then: {later_sentence(h, self._reader)}."
+        if len(told) > MOST_LATER:
+            yield f"Not known then: {len(told) - MOST_LATER} more values."

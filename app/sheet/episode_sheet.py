@@ -1,0 +1,132 @@
+"""The blocks of an episode's page from top to bottom, as short as the page asks them to be."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from typing import Final
+
+from app.formats import ABSENT
+from app.sheet.blocks import Block, Column, Facts, Flag, Heading, SideBySide, Table, Text
+from app.sheet.gas_table import HEADINGS, GasRow
+from app.sheet.press import BODY, SMALL, STRONG, Align
+from app.sheet.shapes import EpisodePage, Fact, FlagLine
+from app.sheet.writer import lowered
+
+_CHART_KEY: Final = (
+    "grey: pH 7.35 to 7.45, SpO2 target; dashed: changes; hollow: doubtful; bold: newest of the device"
+)
+_RECORD: Final = "see the record"
+
+
+def upper_blocks(page: EpisodePage) -> Iterator[Block]:
+    """What stands over the chart: facts, settings now, what changed since the last handover, every change."""
+    yield Facts(page.facts)
+    for fact in page.support:
+        yield Facts((fact,), 1, value_style=STRONG if fact[0] == "Settings now" else BODY)
+    yield Facts((("What changed", f"{page.since_head}: {' '.join(page.since)}"),), 1)
+    yield from _changes(page)
+    yield Heading("The shift on one clock", _CHART_KEY)
+
+
+def _changes(page: EpisodePage) -> Iterator[Block]:
+    b = page.brief
+    yield Heading("Changes this shift and their responses", _left_out(b.changes_out, "earlier change"))
+    short, whole = page.changes[b.changes_out : b.changes], page.changes[b.changes :]
+    if short:
+        yield Text(f"Earlier, by verdict alone: {'; '.join(c.brief for c in short)}.")
+    if whole:
+        columns = (Column("When", 12), Column("What", 46), Column("What it did", 54))
+        yield Table(columns, [(c.at, c.what, c.response) for c in whole])
+    if not page.changes:
+        yield Text("No change of settings recorded this shift.")
+
+
+def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
+    """What stands under the chart: gases, flags, due items and levers, plan and care, what is to be checked."""
+    b = page.brief
+    heading = f"Gases (pressures in {unit}; HCO3 in mmol/L, c: calculated; +/−: against the last change)"
+    yield Heading(heading, _left_out(b.gases_out, "earlier gas"))
+    gases = page.gases[b.gases_out :]
+    yield gas_table(gases) if gases else Text("No gas recorded this shift or before it.")
+    yield Heading("Flags, open and settled")
+    yield from flag_blocks(page.flags, weaker=not b.weaker_evidence, evidence_of=b.evidence_of)
+    due: tuple[Block, ...] = (Heading("Due in the next 4 h, and overdue"), *_texts(page.due, "Nothing is due."))
+    decides = Heading("Levers that could act", "a qualified person decides")
+    levers: tuple[Block, ...] = (decides, *_texts(page.levers, "None by what is recorded."))
+    yield SideBySide(due, levers)
+    told = "; ".join(page.told) or ABSENT
+    plan = _recorded((*page.plan, ("Calls, answers", told)))
+    yield SideBySide((Heading("Plan, calls"), *plan), (Heading("Care"), *_recorded(page.care)))
+    if page.to_check:
+        kept = page.to_check[: len(page.to_check) - b.checks]
+        more = f" {b.checks} more: {_RECORD}." if b.checks else ""
+        yield Facts((("To check", " ".join(kept) + more),), 1, value_style=SMALL)
+
+
+def _recorded(facts: Iterable[Fact]) -> tuple[Block, ...]:
+    """What was recorded in rows; the names of what was not on one line."""
+    facts = tuple(facts)
+    known = tuple(f for f in facts if f[1] != ABSENT)
+    missing = ", ".join(
+        name if n == 0 else lowered(name) for n, (name, _) in enumerate(f for f in facts if f not in known)
+    )
+    blocks: tuple[Block, ...] = (Facts(known, 1),) if known else ()
+    return (*blocks, Text(f"Not recorded: {missing}.", SMALL)) if missing else blocks
+
+
+def _texts(lines: Iterable[str], none: str) -> tuple[Block, ...]:
+    return tuple(Text(line) for line in lines) or (Text(none),)
+
+
+def flag_blocks(flags: tuple[FlagLine, ...], *, weaker: bool, evidence_of: frozenset[str]) -> Iterator[Block]:
+    """Open flags each in a row, the strongest of each group first; those closed this shift in one paragraph.
+
+    `weaker`: those under a stronger one have rows of their own too, else they are named in one line.
+    """
+    opened = [f for f in flags if f.is_open]
+    rows = [f for f in opened if f.is_strongest or weaker]
+    for flag in rows:
+        tier, _, head = flag.head.partition(" ")
+        shown = f"{flag.evidence} {flag.source}".strip() if flag.tier in evidence_of else ""
+        yield Flag(tier.lower(), head, shown, STRONG if flag.is_strongest else BODY)
+    under = [f for f in opened if f not in rows]
+    if under:
+        yield Text(f"Under these, counted once: {'; '.join(f.head for f in under)}.")
+    hidden = [t for t in ("escalate", "concern", "remark") if t not in evidence_of and any(f.tier == t for f in rows)]
+    if hidden:
+        yield Text(f"Evidence and sources of the flags of {' and '.join(hidden)}: {_RECORD}.", SMALL)
+    closed = [f for f in flags if not f.is_open]
+    if closed:
+        yield Text(f"Settled or no longer met: {'; '.join(_closed(closed))}.")
+    if not flags:
+        yield Text("No flag was open or raised this shift.")
+
+
+def _closed(flags: Iterable[FlagLine]) -> Iterator[str]:
+    """Each marker once, with every time it was met."""
+    spells: dict[str, list[str]] = {}
+    for flag in flags:
+        spells.setdefault(flag.marker, []).append(flag.spell)
+    for marker, times in spells.items():
+        yield f"{marker} {', '.join(times)}"
+
+
+def gas_table(gases: tuple[GasRow, ...]) -> Table:
+    """The gases with their differences."""
+    shares = (10, 5, 8, 8, 9, 7, 7, 8, 7, 8, 18, 33)
+    right = range(2, 10)
+    columns = [Column(h, s, Align.RIGHT if n in right else Align.LEFT)
+               for n, (h, s) in enumerate(zip(HEADINGS, shares, strict=True))]  # fmt: skip
+    rows = [
+        (g.at, g.site, g.ph, g.delta_ph, g.paco2, g.delta_paco2, g.pao2, g.hco3, g.pf, g.fio2,
+         g.state + (" (before)" if g.is_before else ""), g.verdict)
+        for g in gases
+    ]  # fmt: skip
+    return Table(columns, rows, frozenset(n for n, g in enumerate(gases) if g.is_before), pad=7.0)
+
+
+def _left_out(count: int, what: str) -> str:
+    if not count:
+        return ""
+    plural = what if count == 1 or what == "more" else f"{what}s" if not what.endswith("s") else f"{what}es"
+    return f"{count} {plural} not shown: {_RECORD}"

@@ -1,0 +1,126 @@
+"""What is otherwise than was handed over, in sentences."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from typing import Final
+
+from app import formats
+from app.finding_names import due_name, marker_name
+from app.operations.last_handover import Handed
+from app.phrases import channel_name
+from app.sheet.writer import STATES, lowered, opened
+from app.words import Reader
+from app.words.figure_lines import FigureLines
+from core.figures.since_handover import FactChange, SinceHandover, Verdict
+from core.judgement.shapes import DueFigure, FlagFigure
+
+_SUPPORT: Final = {
+    "started": "support started", "ended": "support ended", "off the mask": "off the mask",
+    "on the mask again": "on the mask again",
+}  # fmt: skip
+_LONG: Final = frozenset({"plan", "agreed_with", "breaks_and_night", "jobs", "home_support", "feeding", "isolation"})
+"""Facts in words of the ward's own: their new text stands elsewhere on the page."""
+
+
+def compared_with(handed: Handed, reader: Reader) -> str:
+    """What a handover is compared with, for the ward's page."""
+    at = formats.wall(handed.at, reader.zone)
+    if handed.head is None:
+        return f"No handover was closed before: what changed is told since the shift's start, {at}."
+    return f"What changed is told since the last closed handover, as of {at}: {handed.name}."
+
+
+def since_head(handed: Handed, reader: Reader) -> str:
+    """The heading over what changed."""
+    if handed.head is None:
+        return f"Since the shift's start, {reader.time(handed.at)} (no handover was closed before)"
+    return f"Since the last handover, {formats.wall(handed.at, reader.zone)}"
+
+
+def since_lines(since: SinceHandover, lines: FigureLines) -> tuple[str, ...]:
+    """A sentence for each thing that is otherwise."""
+    if not since.was_there:
+        return ("Not on the ward then; all of it is new.",)
+    if since.is_nothing:
+        return ("Nothing is otherwise.",)
+    return tuple(_SinceWriter(since, lines).all())
+
+
+class _SinceWriter:
+    def __init__(self, since: SinceHandover, lines: FigureLines) -> None:
+        self._s, self._lines = since, lines
+        self._reader = lines.reader
+
+    def all(self) -> Iterator[str]:
+        s = self._s
+        support = [_SUPPORT[w] for w in s.support]
+        whole = s.settings and "started" not in s.support  # of a support that is new, all of it is
+        changed = [lowered_name(self._lines.steps(s.settings))] if whole else []
+        if support or changed:
+            yield f"Settings: {', '.join([*support, *changed])}."
+        if s.gas_after is not None:
+            yield f"State: {self._state()}."
+        if s.verdicts:
+            yield f"Verdicts: {'; '.join(self._verdict(v) for v in s.verdicts)}."
+        if s.raised:
+            yield f"Flags raised: {'; '.join(self._flag(f) for f in s.raised)}."
+        if s.gone:
+            yield f"Flags settled or no longer met: {'; '.join(self._flag(f) for f in s.gone)}."
+        if s.done:
+            yield f"Done: {'; '.join(self._done(s.done))}."
+        for fact in s.facts:
+            yield f"{self._fact(fact)}."
+
+    def _state(self) -> str:
+        before, after = self._s.gas_before, self._s.gas_after
+        assert after is not None
+        new, at = lowered(STATES.get(after.state or "", "State not known")), self._reader.time(after.at)
+        if before is None:
+            return f"first gas {new}, pH {self._lines.ph(after)}, PaCO2 {self._lines.paco2(after)} at {at}"
+        old = lowered(STATES.get(before.state or "", "State not known"))
+        state = f"still {new}" if old == new else f"{old} before, now {new}"
+        unit = f" {self._reader.gas_unit}"
+        paco2 = f"{self._lines.paco2(before).removesuffix(unit)} to {self._lines.paco2(after)}"
+        span = f"{self._reader.time(before.at)} to {at}" if before.at != after.at else f"gas of {at} reads otherwise"
+        return f"{state}, pH {self._lines.ph(before)} to {self._lines.ph(after)}, PaCO2 {paco2} ({span})"
+
+    def _verdict(self, v: Verdict) -> str:
+        r = v.response
+        judged = next((g for g in reversed(r.gases) if g.at == r.headline_gas_at), None)
+        word = r.headline if judged is None else lowered(self._lines.headline(r, judged))
+        judged_then = v.before is not None and v.before not in ("not yet known", "not judged", r.headline)
+        was = f" (was {v.before})" if judged_then else ""
+        what = "start" if r.anchor == "start" else "change"
+        return f"{what} of {self._reader.time(r.anchor_at)} {word}{was}"
+
+    def _flag(self, f: FlagFigure) -> str:
+        text = f"{marker_name(f.marker, self._reader)} {self._reader.time(f.since)}"
+        if f.settled_at is not None:
+            by = f" by {f.settled_by}" if f.settled_by else ""
+            return f"{text}, settled {self._reader.time(f.settled_at)}{by}"
+        if f.ended_at is not None:
+            return f"{text}, no longer met {self._reader.time(f.ended_at)}"
+        return f"{text}, undone by a correction" if f.undone_by_correction else text
+
+    def _done(self, done: Iterable[DueFigure]) -> Iterator[str]:
+        """Each kind once, with the times at which it was done."""
+        times: dict[str, list[int]] = {}
+        for d in done:
+            times.setdefault(due_name(d.what, self._reader), []).append(d.done_at or 0)
+        for name, found in times.items():
+            yield f"{name} {', '.join(self._reader.time(at) for at in sorted(set(found)))}"
+
+    def _fact(self, fact: FactChange) -> str:
+        name = channel_name(fact.channel)
+        if fact.channel in _LONG:
+            return f"{name}: new" if fact.before is None else f"{name}: changed (was: {str(fact.before).rstrip('.')})"
+        unit = self._reader.gas_unit
+        old, new = (formats.quantity(fact.channel, v, unit) for v in (fact.before, fact.after))
+        return opened(f"{name} {old} to {new}")
+
+
+def lowered_name(text: str) -> str:
+    """A sentence's first word inside another sentence; abbreviations keep their letters."""
+    first = text.partition(" ")[0]
+    return text if any(c.isupper() or c.isdigit() for c in first[1:]) else lowered(text)

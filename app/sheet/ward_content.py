@@ -1,0 +1,124 @@
+"""What the ward's page of a handover says: every episode in order of concern, whom to see first, what is due."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from app import formats
+from app.headline import headline
+from app.sheet.due_lines import due_short, gases_due, others_due, skin_line
+from app.sheet.shapes import WardPage, WardRow
+from app.sheet.since_lines import compared_with
+from app.sheet.writer import SKIN_OVERDUE, STATES, SheetWriter, opened, quiet_since, strength
+from app.ward.ordering import GAS
+from app.words import sentence
+from core.figures.shift import ShiftFigures
+from core.judgement.shapes import EpisodeFigures, FlagFigure
+
+
+class WardWriter(SheetWriter):
+    """Writes the ward's page."""
+
+    def ward(self, title: str) -> WardPage:
+        shift = self._h.shift
+        span = formats.span(shift.start, self._h.end, self._reader.zone)
+        if shift.end < self._h.end:  # the shift still runs: its figures must not be taken for those of its end
+            span += f", as of {self._reader.time(shift.end)}"
+        if self._h.as_known_at is not None:  # on every page: a review must never be taken for the handover
+            span += f", as known at {formats.wall(self._h.as_known_at, self._reader.zone)}"
+        ends, quiet = [quiet_since(s) for s in shift.episodes], ""
+        if ends and all(at is not None for at in ends):
+            quiet = f"nothing logged since {self._moment(max(at for at in ends if at is not None))}"
+        return WardPage(
+            title, f"Shift {span}", self._see_first(),
+            tuple(self._ward_row(n, s) for n, s in enumerate(shift.episodes, 1)),
+            tuple(gases_due(shift.episodes, self._reader)), tuple(self._ward_missing()),
+            skin_line(shift.episodes, self._reader), quiet,
+            tuple(others_due(shift.episodes, self._reader)), compared_with(self._h.handed, self._reader),
+        )  # fmt: skip
+
+    def _see_first(self) -> str:
+        first = self._h.shift.first
+        if first is None or first.now.concern.why is None:
+            return "No episode stands out: no open flag, nothing overdue."
+        return f"{first.now.label}: {sentence(first.now.concern.why, self._reader)}"
+
+    def _ward_row(self, number: int, s: ShiftFigures) -> WardRow:
+        f, p = s.now, s.now.profile
+        shown = sorted((x for x in s.flags_open if x.strongest), key=strength)
+        strong = [x for x in shown if x.tier != "remark"]
+        remarks = [x for x in shown if x.tier == "remark" and x.marker != SKIN_OVERDUE]  # summed under what is due
+        return WardRow(
+            number, f.label, self._who(f), shown[0].tier if shown else "", self._standing(f),
+            self._change_of_state(s), self._support_short(f), self._latest_response(f),
+            tuple(self._flag_line(x) for x in strong), "; ".join(self._remark(x) for x in remarks),
+            "; ".join(due_short(d, self._reader) for d in s.due),
+            f"Ceiling: {p.get('ceiling_of_care') or formats.ABSENT}. "
+            f"Resuscitation: {p.get('resuscitation') or formats.ABSENT}.",
+            f.support.ended_at is not None, self._action(s), _sign(f),
+        )  # fmt: skip
+
+    def _action(self, s: ShiftFigures) -> str:
+        """The plan and the newest call, where a flag asks for a senior or a gas is overdue."""
+        escalate = any(x.tier == "escalate" for x in s.flags_open)
+        if not escalate and not any(d.what in GAS and d.state == "overdue" for d in s.due):
+            return ""
+        plan = str(s.now.profile.get("plan") or formats.ABSENT).rstrip(".")
+        called = f"{self._clock(s.told[-1].at)} {s.told[-1].words or 'somebody'}" if s.told else formats.ABSENT
+        return f"Plan: {plan}. Told: {called.rstrip('.')}."
+
+    def _support_short(self, f: EpisodeFigures) -> str:
+        """Support and oxygen as short as a ward's list needs them."""
+        s = f.support
+        if s.ended_at is not None:
+            return self._support_now(f)
+        if s.break_since is not None:
+            return f"OFF THE MASK since {self._clock(s.break_since)}"
+        pressure = ""
+        if s.ipap_cmH2O is not None and s.epap_cmH2O is not None:
+            pressure = f" {formats.trimmed(s.ipap_cmH2O)}/{formats.trimmed(s.epap_cmH2O)} cmH2O"
+        elif s.epap_cmH2O is not None:
+            pressure = f" {formats.trimmed(s.epap_cmH2O)} cmH2O"
+        support = s.pressure_support_cmH2O if s.ipap_cmH2O is not None else None
+        more = f" (PS {formats.trimmed(support)})" if support is not None else ""
+        return f"{s.mode or 'mode not recorded'}{pressure}{more}, {self._lines.oxygen(s)}"
+
+    def _change_of_state(self, s: ShiftFigures) -> str:
+        before, after = s.state_before, s.state_after
+        if s.began and after:
+            return "support started this shift"
+        if not before or not after or before == after:
+            return ""
+        return f"{STATES[before].lower()} before, now {STATES[after].lower()}"
+
+    def _latest_response(self, f: EpisodeFigures) -> str:
+        judged = [r for r in f.responses if r.headline not in ("not yet known", "not judged")]
+        waiting = f.responses[-1] if f.responses and f.responses[-1].headline == "not yet known" else None
+        text = ""
+        if judged:
+            r = judged[-1]
+            anchor = "support started" if r.anchor == "start" else self._lines.anchor(r)
+            text = f"{self._moment(r.anchor_at)} {anchor}. {opened(self._lines.of(f).verdict(r, brief=True))}"
+        if waiting is not None:
+            text += f" Change of {self._moment(waiting.anchor_at)}: response not yet known."
+        return text.strip() or "No response judged yet."
+
+    def _flag_line(self, f: FlagFigure) -> str:
+        return f"{f.tier.upper()} {self._remark(f)}"
+
+    def _ward_missing(self) -> Iterator[str]:
+        """What nobody recorded and the next shift will ask for."""
+        for channel, word in (("handover_remark", "handover remark"), ("plan", "plan"),
+                              ("ceiling_of_care", "ceiling of care"),
+                              ("resuscitation", "resuscitation decision")):  # fmt: skip
+            without = [s.now.label for s in self._h.shift.episodes
+                       if not s.now.profile.get(channel) and s.now.support.ended_at is None]  # fmt: skip
+            if without and len(without) == len(self._h.shift.episodes):
+                yield f"No {word} recorded for any episode."
+            elif without:
+                yield f"No {word} recorded: {', '.join(without)}."
+
+
+def _sign(f: EpisodeFigures) -> str:
+    told = headline(f)
+    return told.sign.value if told is not None else ""

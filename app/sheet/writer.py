@@ -1,0 +1,104 @@
+"""What every page of a handover says alike: how an episode stands, its support, moments in the reader's zone."""
+
+from __future__ import annotations
+
+from typing import Final
+
+from app import formats
+from app.finding_names import marker_name
+from app.headline import ever_acidotic
+from app.operations.handover import Handover
+from app.words import Reader
+from app.words.figure_lines import FigureLines
+from core.figures.shift import ShiftFigures
+from core.judgement.shapes import EpisodeFigures, FlagFigure
+from core.record.instant import MINUTE
+
+STATES: Final = {"severe": "Severe acidosis", "acidotic": "Acidotic", "resolved": "Not acidotic"}
+"""A gas that is not acidotic may still be a bad one: in a heading "resolved" would say too much."""
+SKIN_OVERDUE: Final = "skin_check_overdue"
+QUIET: Final = 30 * MINUTE
+"""A record that ends so long before the shift does is said to."""
+_STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
+
+
+class SheetWriter:
+    """Turns one handover into words."""
+
+    def __init__(self, handover: Handover, reader: Reader) -> None:
+        self._h = handover
+        self._reader = reader
+        self._lines = FigureLines(reader)
+
+    def _standing(self, f: EpisodeFigures) -> str:
+        """The last gas that tells the state, and the state."""
+        gases = [g for g in f.gases if g.site != "venous"]
+        if not gases:
+            return "No arterial or capillary gas recorded."
+        last = gases[-1]
+        state = STATES.get(last.state or "", "State not known")
+        if last.state == "resolved" and last.ph_above is not None:
+            state += f", pH above {formats.fixed(last.ph_above, 2)}"
+        pf = f", P/F {self._lines.pressure(last.pf_mmHg)}" if last.pf_mmHg is not None else ""
+        if f.now.oxygen_failure and f.now.pf_mmHg is not None:
+            first = "P/F" if ever_acidotic(f) else "Hypoxaemic: P/F"
+            state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}; {lowered(state)}", ""
+        off = ", last gas drawn off support" if last.off_support else ""
+        return (
+            f"{state}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
+        )
+
+    def _support_now(self, f: EpisodeFigures) -> str:
+        s = f.support
+        if s.ended_at is not None:
+            return f"Support ended {formats.wall(s.ended_at, self._reader.zone)}" + (
+                f", {s.end_reason}" if s.end_reason else ""
+            )
+        text = self._lines.settings(s)
+        return f"{text}; OFF THE MASK since {self._clock(s.break_since)}" if s.break_since is not None else text
+
+    def _who(self, f: EpisodeFigures) -> str:
+        p = f.profile
+        age, indication = p.get("age"), p.get("indication")
+        parts = (
+            formats.quantity("age", age) if age is not None else "age not recorded", word_of(p.get("sex"), "sex"),
+            formats.quantity("indication", indication) if indication else "indication not recorded",
+        )  # fmt: skip
+        return ", ".join(parts)
+
+    def _remark(self, f: FlagFigure) -> str:
+        return f"{marker_name(f.marker, self._reader)}, since {self._moment(f.since)}"
+
+    def _clock(self, at: int) -> str:
+        return formats.clock(at, self._reader.zone)
+
+    def _moment(self, at: int) -> str:
+        return self._reader.time(at)
+
+
+def quiet_since(s: ShiftFigures) -> int | None:
+    """When the record of a running episode ended, where that is well before the shift's end."""
+    at = s.now.now.last_logged_at
+    if at is None or s.now.support.ended_at is not None or s.end - at <= QUIET:
+        return None
+    return at
+
+
+def strength(f: FlagFigure) -> tuple[int, int]:
+    """The order of flags: the strongest first, then the oldest."""
+    return (_STRENGTH.get(f.tier, 3), f.since)
+
+
+def lowered(text: str) -> str:
+    """A sentence inside another."""
+    return text[:1].lower() + text[1:]
+
+
+def opened(text: str) -> str:
+    """The words as a sentence begins."""
+    return text[:1].upper() + text[1:]
+
+
+def word_of(value: float | str | None, name: str) -> str:
+    """A fact, or that it was not recorded."""
+    return str(value) if value else f"{name} not recorded"
