@@ -5,9 +5,9 @@ Run with `python -m pytest -m soak tests/soak`.
 
 from __future__ import annotations
 
+import os
 import random
 import shutil
-import subprocess
 import sys
 from pathlib import Path
 
@@ -15,7 +15,15 @@ import pytest
 
 from storage.keys import Cost
 from storage.store import Store
-from tests.support.ended_early import acknowledged, assert_all_there, kill_while_logging, rest_of, start
+from tests.support.ended_early import (
+    COMPILER,
+    acknowledged,
+    assert_all_there,
+    kill_while_logging,
+    log_until_power_fails,
+    shim,
+    start,
+)
 from tests.support.flips import SECRET
 from tests.support.logging_child import NOW
 
@@ -24,7 +32,8 @@ pytestmark = [
     pytest.mark.timeout(3600),
     pytest.mark.skipif(sys.platform == "win32", reason="ends programs as POSIX does"),
 ]
-COMPILER = shutil.which("cc")
+KILLS = int(os.environ.get("LUFF_KILLS", "200"))
+"""Kills of a plain store, and as many of an encrypted one."""
 
 
 @pytest.mark.parametrize("secret", [None, SECRET])
@@ -32,12 +41,13 @@ def test_killed_at_random_moments(tmp_path: Path, secret: str | None, capsys: py
     path, chance = tmp_path / "ward.luff", random.Random(11)
     Store.create(path, now=NOW, passphrase=secret, cost=Cost(64, 1, 1)).close()
     taken: dict[str, list[int]] = {}
-    for n in range(100):
+    for n in range(KILLS):
         taken[f"E{n}"] = kill_while_logging(path, f"E{n}", chance, secret)
         if n % 10 == 9:
             assert_all_there(path, taken, secret)
+    assert_all_there(path, taken, secret)
     with capsys.disabled():
-        print(f"\n100 kills, {sum(map(len, taken.values()))} acknowledged entries, none lost")
+        print(f"\n{KILLS} kills, {sum(map(len, taken.values()))} acknowledged entries, none lost")
 
 
 @pytest.mark.skipif(COMPILER is None or sys.platform != "linux", reason="needs a C compiler and Linux")
@@ -46,31 +56,15 @@ def test_unsynced_writes_dropped_under_1000_commits(
     tmp_path: Path, secret: str | None, capsys: pytest.CaptureFixture[str]
 ) -> None:
     """At each of 10 cuts everything that was not synced is gone: the file, its journal, both as last synced."""
-    library = tmp_path / "unsynced.so"
-    source = Path(__file__).parents[1] / "support" / "unsynced.c"
-    subprocess.run([str(COMPILER), "-shared", "-fPIC", "-O2", "-o", str(library), str(source), "-ldl"], check=True)
-    live, cut = tmp_path / "live", tmp_path / "cut"
+    library, live, cut = shim(tmp_path), tmp_path / "live", tmp_path / "cut"
     live.mkdir()
-    path = live / "ward.luff"
-    Store.create(path, now=NOW, passphrase=secret, cost=Cost(64, 1, 1)).close()
-    shutil.copyfile(path, live / "ward.luff.durable")
+    Store.create(live / "ward.luff", now=NOW, passphrase=secret, cost=Cost(64, 1, 1)).close()
     taken: dict[str, list[int]] = {}
     for n in range(10):
-        child = start(path, f"E{n}", 100_000, secret=secret, preload=str(library))
-        assert child.stdout is not None
-        lines = [child.stdout.readline() for _ in range(110)]
-        child.kill()
-        taken[f"E{n}"] = acknowledged(lines + rest_of(child))
-        shutil.rmtree(cut, ignore_errors=True)
-        cut.mkdir()
-        for kept in live.glob("*.durable"):
-            shutil.copyfile(kept, cut / kept.name.removesuffix(".durable"))
-        for envelope in live.glob("*.key"):
-            shutil.copyfile(envelope, cut / envelope.name)
+        taken[f"E{n}"] = log_until_power_fails(live, cut, library, f"E{n}", 110, secret)
         assert_all_there(cut / "ward.luff", taken, secret)
         shutil.rmtree(live)
         shutil.copytree(cut, live)
-        shutil.copyfile(path, live / "ward.luff.durable")
     with capsys.disabled():
         print(f"\n10 cuts, {sum(map(len, taken.values()))} commits with unsynced writes dropped, none lost")
 

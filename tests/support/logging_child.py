@@ -1,6 +1,7 @@
 """A program that logs entries one by one and says of each that it was taken, for tests that end it early.
 
 `python -m tests.support.logging_child STORE EPISODE COUNT [LARGEST_FILE]`; a passphrase stands in LUFF_SECRET.
+With LUFF_CARELESS it logs without asking the disk to keep anything.
 Each acknowledged entry is one line `sequence number` on standard output; an error is one line `error key`.
 """
 
@@ -9,6 +10,7 @@ from __future__ import annotations
 import os
 import sys
 from pathlib import Path
+from typing import Any
 
 from core.record.entries import NewEntry
 from core.record.instant import parse
@@ -22,7 +24,9 @@ def main() -> None:
     path, episode, count = Path(sys.argv[1]), sys.argv[2], int(sys.argv[3])
     if len(sys.argv) > 4:
         limit_files(int(sys.argv[4]))
-    with Store.open(path, passphrase=os.environ.get("LUFF_SECRET"), busy_seconds=60) as store:
+    if os.environ.get("LUFF_CARELESS"):
+        sync_nothing()
+    with Store.open(path, passphrase=os.environ.get("LUFF_SECRET")) as store:
         print("ready", flush=True)
         for i in range(count):
             new = NewEntry(
@@ -35,6 +39,20 @@ def main() -> None:
                 return
             sys.stdout.write(f"{receipt.last_seq} {i}\n")
             sys.stdout.flush()
+
+
+def sync_nothing() -> None:
+    """Make every connection one that asks the disk to keep nothing: what the proof of power cuts must find."""
+    from storage import engine
+
+    careful = engine.raw_connection
+
+    def careless(*args: Any, **more: Any) -> Any:
+        connection = careful(*args, **more)
+        connection.execute("PRAGMA synchronous = OFF")
+        return connection
+
+    engine.raw_connection = careless
 
 
 def limit_files(size: int) -> None:
