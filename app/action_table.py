@@ -89,6 +89,9 @@ DEEDS: Final = (
     Deed("salvage", "store", QT_TRANSLATE_NOOP("action", "Save from a damaged store..."), ("Ctrl+Shift+G",),
          QT_TRANSLATE_NOOP("action", "Read what is left of a damaged file into a new store; what was lost is said."),
          needs_store=False),
+    Deed("key_file", "store", QT_TRANSLATE_NOOP("action", "Put a key file back..."), ("Ctrl+Alt+K",),
+         QT_TRANSLATE_NOOP("action", "Where the key file beside a store was altered or lost: that of a backup, tried "
+                           "first."), needs_store=False),
     Deed("people", "store", QT_TRANSLATE_NOOP("action", "People..."), ("Ctrl+Shift+P",),
          QT_TRANSLATE_NOOP("action", "Who signs in with a PIN: add, retire, give a new PIN."), parted=True),
     Deed("archive", "store", QT_TRANSLATE_NOOP("action", "Ended episodes..."), ("Ctrl+Shift+W",),

@@ -63,8 +63,8 @@ class FirstPage(QWidget):
         self._add_title()
         self._add_trouble()
         self._add_cautions(cautions_seen)
-        self._add_ways()
         self._add_recent(recent)
+        self._add_ways()
         self._centre(middle)
         self._allow(cautions_seen)
 
@@ -121,7 +121,6 @@ class FirstPage(QWidget):
         self._column.addSpacing(px(8))
 
     def _add_ways(self) -> None:
-        self.sample.setProperty("role", "primary")
         ways = QWidget()
         row = FlowRow(ways, self._theme.px(12))
         row.setContentsMargins(0, 0, 0, 0)
@@ -139,19 +138,17 @@ class FirstPage(QWidget):
         self._column.addWidget(note)
 
     def _add_recent(self, recent: Sequence[str]) -> None:
-        if recent:
-            heading = QLabel(self.tr("Opened before"))
-            heading.setProperty("role", "strong")
-            self._column.addSpacing(self._theme.px(4))
-            self._column.addWidget(heading)
-        for path in recent[:MOST_RECENT]:
+        """The ward's own store comes first, once there is one."""
+        for n, path in enumerate(recent[:MOST_RECENT]):
             button = QPushButton(f"{Path(path).name}    {Path(path).parent}")
-            button.setProperty("role", "plain")
+            button.setProperty("role", "plain" if n else "primary")
             button.setProperty("path", path)
             button.setAccessibleName(self.tr("Open {path}").format(path=path))
             button.clicked.connect(self._recent)
             self.recent.append(button)
             self._column.addWidget(button, 0, Qt.AlignmentFlag.AlignLeft)
+        if not recent:
+            self.sample.setProperty("role", "primary")
 
     def _centre(self, middle: QFrame) -> None:
         """In the middle of the page; with large text the page scrolls."""

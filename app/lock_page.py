@@ -18,6 +18,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.dialogs.asking import label_beside
 from app.theme import Theme
 from storage.people import MOST_INITIALS, MOST_PIN
 
@@ -75,8 +76,8 @@ class LockPage(QWidget):
         self._until, self._wait_words = 0.0, ""
         self._form = QFormLayout()
         self._form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
-        self._form.addRow(self.tr("Initials"), self.initials)
-        self._form.addRow(self.tr("PIN"), self.secret)
+        for word, line in ((self.tr("Initials"), self.initials), (self.tr("PIN"), self.secret)):
+            self._form.addRow(label_beside(word, line), line)
         self.initials.setAccessibleName(self.tr("Initials"))
         self.secret.setAccessibleName(self.tr("PIN"))
         self._column = QVBoxLayout(self._card)

@@ -42,9 +42,6 @@ class NewerEntry:
     action: str
 
 
-_TOLD = ("channel", "at", "raw", "raw_unit", "note", "by", "action")
-
-
 @dataclass(frozen=True, slots=True)
 class NewerEpisode:
     """What came later for one episode: entries, device samples, and when something was last recorded (0 where the
@@ -152,7 +149,13 @@ def _told(headers: Iterable[Row], rows: Iterable[tuple[str, Row]], head: int, *,
     for episode in sorted(last, key=lambda k: (-last[k], k)):
         own = entries[episode][-room:] if room else []
         room -= len(own)
-        told = tuple(NewerEntry(*(row[k] for k in _TOLD)) for row in own)
+        told = tuple(_entry(row, batches) for row in own)
         episodes.append(NewerEpisode(episode, len(entries[episode]), samples[episode], last[episode], told))
     first = min((b["recorded_at"] for b in batches.values()), default=None)
     return Newer(top, len(batches), first, tuple(episodes), others, damaged)
+
+
+def _entry(row: Row, batches: dict[int, Row]) -> NewerEntry:
+    batch = batches.get(row["batch_seq"], {})
+    by = row["by"] or batch.get("by", "")
+    return NewerEntry(row["channel"], row["at"], row["raw"], row["raw_unit"], row["note"], by, row["action"])

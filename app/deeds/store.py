@@ -154,10 +154,11 @@ class StoreDeeds(Doer):
         return found[max(found)] if found else None
 
     def _store_path(self) -> Path | None:
-        """The store that is open, else the one that was tried last."""
+        """The store that is open, else the one that was tried last, else the one opened before."""
         if self.window.model is not None:
             return self.window.model.session.store_path
-        return self.window.doers.file.last_path
+        recent = [Path(p) for p in self.window.preferences.recent_stores[:1]]
+        return self.window.doers.file.last_path or next(iter(recent), None)
 
     def _who(self) -> str:
         return self.window.model.session.person if self.window.model else self.window.preferences.person

@@ -5,7 +5,6 @@ from __future__ import annotations
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import (
-    QDialog,
     QDialogButtonBox,
     QFormLayout,
     QLabel,
@@ -13,10 +12,11 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from app.fitted import FittedDialog, RollArea, room_for
 from app.theme import Theme
 
 
-class AskingDialog(QDialog):
+class AskingDialog(FittedDialog):
     """Fields go into `form`. `refuse` says what is wrong and keeps the dialog open."""
 
     def __init__(self, title: str, accept_word: str, theme: Theme, parent: QWidget | None = None) -> None:
@@ -26,6 +26,7 @@ class AskingDialog(QDialog):
         self.form = QFormLayout()
         self.form.setSpacing(theme.px(8))
         self.form.setFieldGrowthPolicy(QFormLayout.FieldGrowthPolicy.ExpandingFieldsGrow)
+        self.form.setRowWrapPolicy(QFormLayout.RowWrapPolicy.WrapLongRows)
         self.form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.wrong = QLabel()
         self.wrong.setWordWrap(True)
@@ -37,27 +38,32 @@ class AskingDialog(QDialog):
         self.leave = self.buttons.addButton(self.tr("Leave"), QDialogButtonBox.ButtonRole.RejectRole)
         self.buttons.accepted.connect(self.submit)
         self.buttons.rejected.connect(self.reject)
-        column = QVBoxLayout(self)
+        inside = QWidget()
+        self.body = QVBoxLayout()
+        self._column = QVBoxLayout(inside)
+        self._column.setContentsMargins(0, 0, theme.px(4), 0)
+        self._column.setSpacing(theme.px(10))
+        self._column.addLayout(self.body)
+        self._column.addLayout(self.form)
+        self._column.addStretch(1)
+        self.roll = RollArea(inside)
+        column = self._outer = QVBoxLayout(self)
         column.setContentsMargins(theme.px(20), theme.px(16), theme.px(20), theme.px(16))
         column.setSpacing(theme.px(10))
-        self.body = QVBoxLayout()
-        column.addLayout(self.body)
-        self._column = column
-        column.addLayout(self.form)
+        column.addWidget(self.roll, 1)
         column.addWidget(self.wrong)
-        column.addStretch(1)
         column.addWidget(self.buttons)
 
     def field(self, label: str, widget: QWidget) -> None:
         """A field with its label; the label is its accessible name."""
         widget.setAccessibleName(label)
-        self.form.addRow(label, widget)
+        self.form.addRow(label_beside(label, widget), widget)
 
     def add_body(self, widget: QWidget) -> None:
         """A widget over the fields, which takes the room there is."""
         self.body.addWidget(widget)
         self._column.setStretchFactor(self.body, 1)
-        self._column.setStretch(3, 0)
+        self._column.setStretch(2, 0)
 
     def showEvent(self, event: QShowEvent) -> None:
         """Tall enough for every wrapped line: a form that cuts its words says something else."""
@@ -65,10 +71,21 @@ class AskingDialog(QDialog):
         self.grow()
 
     def grow(self) -> None:
-        """Become tall enough for what stands there now."""
-        needed = self._column.totalHeightForWidth(self.width())
-        if needed > self.height():
-            self.resize(self.width(), needed)
+        """Become tall enough for what stands there now, as far as there is room."""
+        self.wrong.setVisible(bool(self.wrong.text()))
+        room = room_for(self)
+        width = min(self.width(), room.width())
+        self.resize(width, min(max(self._needed(width), self.height()), room.height()))
+
+    def _needed(self, width: int) -> int:
+        """The height at which nothing rolls."""
+        outer = self._outer
+        margins = outer.contentsMargins()
+        inner = width - margins.left() - margins.right()
+        parts = [self._column.totalHeightForWidth(inner), self.buttons.sizeHint().height()]
+        if self.wrong.text():
+            parts.append(self.wrong.heightForWidth(inner))
+        return sum(parts) + outer.spacing() * (len(parts) - 1) + margins.top() + margins.bottom()
 
     def submit(self) -> None:
         """What the accepting button does; the usual one closes the dialog."""
@@ -79,3 +96,12 @@ class AskingDialog(QDialog):
         self.wrong.setText(text)
         self.grow()
         self.go.setEnabled(True)
+
+
+def label_beside(text: str, field: QWidget) -> QLabel:
+    """A label that stands at the middle of its field: a form's own stays near the top of a tall one."""
+    label = QLabel(text)
+    label.setBuddy(field)
+    field.ensurePolished()
+    label.setMinimumHeight(field.sizeHint().height())
+    return label

@@ -6,9 +6,19 @@ from pathlib import Path
 from typing import Any, cast
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QFileDialog, QHBoxLayout, QLabel, QLineEdit, QPlainTextEdit, QPushButton, QWidget
+from PySide6.QtWidgets import (
+    QFileDialog,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QPlainTextEdit,
+    QPushButton,
+    QSizePolicy,
+    QWidget,
+)
 
 from app.clock import Clock
+from app.dialogs.asking import label_beside
 from app.dialogs.passphrase import SecretDialog
 from app.failure import Failure
 from app.runner import Opener, Operation, Runner
@@ -39,12 +49,14 @@ class FileWork(SecretDialog):
         self.noted.setProperty("role", "caption")
         self.noted.setWordWrap(True)
         self.noted.setTextFormat(Qt.TextFormat.PlainText)
+        self.noted.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Preferred)
         self.told = QPlainTextEdit()
         self.told.setReadOnly(True)
         self.told.setAccessibleName(self.tr("What came of it"))
         self.told.setMinimumHeight(theme.px(180))
         self.told.hide()
         self.open_new = QPushButton(self.tr("Open the new store"))
+        self.open_new.setProperty("role", "primary")
         self.open_new.hide()
         self.open_new.clicked.connect(self._open_new)
         self.resize(theme.px(680), theme.px(320))
@@ -61,8 +73,8 @@ class FileWork(SecretDialog):
         self.secret_line = self.secret(self.tr("Passphrase"))
         self.secret_line.setPlaceholderText(self.tr("or the recovery code"))
         self.form.addRow("", self.show_typed)
-        self._column.insertWidget(3, self.told, 1)
-        self._column.insertWidget(4, self.open_new, 0, Qt.AlignmentFlag.AlignLeft)
+        self._column.insertWidget(2, self.told, 1)
+        self._column.insertWidget(3, self.open_new, 0, Qt.AlignmentFlag.AlignLeft)
         self.source.textChanged.connect(self.look_at_source)
         self.look_at_source()
 
@@ -78,7 +90,7 @@ class FileWork(SecretDialog):
         layout.addWidget(line, 1)
         layout.addWidget(button)
         line.setAccessibleName(label)
-        self.form.addRow(label, row)
+        self.form.addRow(label_beside(label, line), row)
 
     def look_at_source(self) -> None:
         """Ask for a passphrase only where the file needs one, and say what file it is."""
@@ -164,11 +176,14 @@ class FileWork(SecretDialog):
         self.told.setPlainText("\n".join(lines))
         self.told.show()
         self.open_new.show()
-        self.open_new.setProperty("role", "primary")
         self.open_new.setDefault(True)
         self.go.setEnabled(False)
+        self.go.hide()
         for row in range(self.form.rowCount()):
             self.form.setRowVisible(row, False)
+        told_at = self._column.indexOf(self.told)
+        for n in range(self._column.count()):
+            self._column.setStretch(n, int(n == told_at))
         self.resize(self.width(), max(self.height(), self.theme.px(420)))
         self.grow()
         self.open_new.setFocus()

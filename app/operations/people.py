@@ -104,8 +104,8 @@ def require_lead(store: Store, who: str) -> None:
 
 
 def pin_by_code(store: Store, who: str, now: Instant, request: NewPin) -> Outcome[str]:
-    """Give somebody a PIN by the recovery code, a new one or, as staff, the first one, and sign them in; their initials.
-    That the code was used is an event of its own.
+    """Give somebody a PIN by the recovery code, a new one or, as staff, the first one, and sign them in; their
+    initials. That the code was used is an event of its own.
 
     Raises:
         RecordError: `people.wrong_code`, `people.bad_initials`, `people.bad_pin`, `people.weak_pin`.

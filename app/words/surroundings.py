@@ -41,6 +41,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "handover.paper": "'{paper}' is no paper. Accepted: {accepted}.",
     "handover.too_long": "A shift of {hours:0} h is too long: at most {accepted} h are accepted.",
     "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
+    "intake.overtaken":
+        "Something was recorded of the same episodes since {path} was read: nothing was taken. Accepted: {accepted}.",
     "intake.refused": "{path} was not taken: {rows} row(s) refused. Accepted: {accepted}.",
     "intake.unknown_source": "Nothing was taken in as '{value}'. Accepted: {accepted}.",
     "intake.withdrawn_already": "{path} was withdrawn already. Accepted: {accepted}.",

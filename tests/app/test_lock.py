@@ -85,6 +85,7 @@ def test_no_pin_is_asked_per_entry_and_change_person_closes_the_screen(qtbot, wi
         sign_in(qtbot, window, "AB", PIN)
         until(qtbot, lambda: not window.keeping.lock.is_locked)
         for line in ("rr 24", "hr 95"):
+            settled(qtbot, window)  # that they signed in is an entry of the ledger too
             head = window.model.session.head
             window.strip.set_text(line)
             settled(qtbot, window)
