@@ -9,7 +9,7 @@ from typing import Final
 
 CAUTIONS: Final = (
     "Supports and never replaces clinical judgement: a qualified person decides.",
-    "No alarm and no monitor: it knows only what was logged, and nothing before it was logged.",
+    "It is no alarm and no monitor: it knows only what was logged, and nothing before it was logged.",
     "Local policy and licensed practice come first. Thresholds marked * or 'from memory' or 'common practice' are to "
     "be confirmed locally before anyone relies on them.",
     "A ward settles its regulatory position before it relies on flags.",

@@ -27,6 +27,7 @@ from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
 from app.readers import reader_at
 from app.session import SessionModel
+from app.strip.caution_line import with_caution
 from app.strip.completion import completed, completions
 from app.strip.line_field import LineField
 from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, OneKeyButtons
@@ -101,7 +102,7 @@ class LogStrip(QFrame):
         self._row.addLayout(line, 1)
         self._row.addWidget(self.keys)
         self._column.addLayout(self._row)
-        self._column.addWidget(self.said)
+        self._column.addLayout(with_caution(self.said))
 
     def _connect(self) -> None:
         self.line.textEdited.connect(self._edited)

@@ -7,9 +7,9 @@ from dataclasses import dataclass, replace
 
 from PySide6.QtCore import QCoreApplication
 
+from app.certainty import starred
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
 from app.course import Course
-from app.certainty import starred
 from app.finding_names import due_name, marker_name
 from app.formats import clock, minutes, quantity
 from app.headline import (
