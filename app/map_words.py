@@ -9,10 +9,11 @@ from math import ceil, floor
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
 from app.formats import fixed, gas_pressure, signed, trimmed, wall
 from app.headline import gas_state_word, judged_sign, since_start_words, verdict_with_loss
-from app.phrases import gas_name, gas_words, ph_word, state_of, translate, verdict_or_none
+from app.phrases import gas_name, gas_words, state_of, translate, verdict_or_none
 from app.tables import Table
 from app.ward.lane_words import anchor_name
 from app.words import Reader, sentence
+from app.words.short_forms import ph_as_reported
 from core.figures.gas_path import PathGas, gas_path
 from core.figures.map_lines import map_lines
 from core.judgement.shapes import EpisodeFigures
@@ -140,7 +141,7 @@ def map_table(figures: EpisodeFigures, reader: Reader) -> Table:
 def _row(p: PathGas, figures: EpisodeFigures, reader: Reader) -> tuple[str, ...]:
     g = p.gas
     return (
-        str(p.number), wall(g.at, reader.zone), gas_name(g), ph_word(g) or "-",
+        str(p.number), wall(g.at, reader.zone), gas_name(g), ph_as_reported(g) or "-",
         "-" if g.paco2_mmHg is None else gas_pressure(g.paco2_mmHg, reader.gas_unit),
         "-" if g.hco3_calculated_mmol_L is None else f"{fixed(g.hco3_calculated_mmol_L, 1)} mmol/L",
         gas_state_word(figures, g), class_words(p, reader), response_words(p, reader),

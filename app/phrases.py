@@ -9,8 +9,9 @@ from typing import Final
 from PySide6.QtCore import QCoreApplication
 
 from app.course import Stretch
-from app.formats import fixed, fraction, gas_pressure, quantity, trimmed
+from app.formats import fraction, gas_pressure, quantity, trimmed
 from app.theme import GasState, Verdict, verdict_of
+from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from core.judgement.shapes import GasFigure
 from core.record.channels import CHANNELS
 from core.record.settings import Settings
@@ -66,9 +67,8 @@ def settings_line(s: Settings) -> str:
     """All settings in force, on one line."""
     parts = [s.mode or translate("phrases", "mode not recorded")]
     if s.is_bilevel and known(s.ipap):
-        support = f" (PS {trimmed(s.pressure_support)})" if known(s.pressure_support) else ""
-        epap = f" / EPAP {trimmed(s.epap)}" if known(s.epap) else ""
-        parts.append(f"IPAP {trimmed(s.ipap)}{epap} cmH2O{support}")
+        support = s.pressure_support if known(s.pressure_support) else None
+        parts.append(two_levels(s.ipap, trimmed(s.epap) if known(s.epap) else "", support))
     elif s.is_cpap and known(s.low_pressure):
         parts.append(f"{trimmed(s.low_pressure)} cmH2O")
     if not s.is_off:
@@ -117,18 +117,13 @@ def _bare(key: str, value: float | str | None) -> str:
     return text if isinstance(value, str) else text.partition(" ")[0]
 
 
-def ph_word(gas: GasFigure) -> str:
-    """The pH with the precision it was typed with."""
-    return gas.ph_text or (fixed(gas.ph, 2) if gas.ph is not None else "")
-
-
 def gas_words(gas: GasFigure, gas_unit: str) -> str:
     """A gas in one line: pH, pressures, P/F."""
     parts = []
-    if gas.ph is not None:
-        parts.append(f"pH {ph_word(gas)}")
-    if gas.paco2_mmHg is not None:
-        parts.append(f"PaCO2 {gas_pressure(gas.paco2_mmHg, gas_unit)}")
+    if ph := ph_as_reported(gas):
+        parts.append(f"pH {ph}")
+    if paco2 := paco2_as_reported(gas, gas_unit):
+        parts.append(f"PaCO2 {paco2}")
     if gas.pao2_mmHg is not None:
         parts.append(f"PaO2 {gas_pressure(gas.pao2_mmHg, gas_unit)}")
     if gas.pf_mmHg is not None:

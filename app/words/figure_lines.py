@@ -7,6 +7,7 @@ from dataclasses import dataclass, field, replace
 
 from app import formats
 from app.words import Reader, sentence
+from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
 from app.words.verdict_loss import with_loss
 from core.judgement.shapes import (
@@ -74,9 +75,7 @@ class FigureLines:
     def _pressures(self, s: SupportFigure) -> list[str]:
         if s.ipap_cmH2O is not None:
             epap = formats.trimmed(s.epap_cmH2O) if s.epap_cmH2O is not None else self.tr("not recorded")
-            support = s.pressure_support_cmH2O
-            more = f" (PS {formats.trimmed(support)})" if support is not None else ""
-            return [f"IPAP {formats.trimmed(s.ipap_cmH2O)} / EPAP {epap} cmH2O{more}"]
+            return [two_levels(s.ipap_cmH2O, epap, s.pressure_support_cmH2O)]
         return [f"{formats.trimmed(s.epap_cmH2O)} cmH2O"] if s.epap_cmH2O is not None else []
 
     def oxygen(self, s: SupportFigure) -> str:
@@ -106,14 +105,11 @@ class FigureLines:
 
     def ph(self, gas: GasFigure) -> str:
         """pH with the precision it was reported in."""
-        return self.absent() if gas.ph is None else gas.ph_text or formats.fixed(gas.ph, 2)
+        return ph_as_reported(gas) or self.absent()
 
     def paco2(self, gas: GasFigure) -> str:
         """PCO2 in the reader's unit; as typed where it was typed in that unit."""
-        if gas.paco2_mmHg is None:
-            return self.absent()
-        typed = gas.paco2_text or ""
-        return typed if typed.endswith(f" {self.reader.gas_unit}") else self.pressure(gas.paco2_mmHg)
+        return paco2_as_reported(gas, self.reader.gas_unit) or self.absent()
 
     def pressure(self, mmhg: float | None, *, sign: bool = False) -> str:
         """A gas pressure in the reader's unit."""
@@ -240,9 +236,10 @@ class FigureLines:
 
     def flag_head(self, f: FlagFigure) -> str:
         """A flag's name with its tier, since when, and what became of it."""
+        from app.certainty import starred
         from app.finding_names import marker_name
 
-        name = marker_name(f.marker, self.reader)
+        name = starred(marker_name(f.marker, self.reader), f.sure)
         text = f"{self.tr(f.tier).upper()} {name}, {self.tr('since')} {self.reader.time(f.since)}"
         return text + self._fate(f)
 
