@@ -3,22 +3,24 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt, qVersion
-from PySide6.QtWidgets import QDialog, QDialogButtonBox, QLabel, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QDialogButtonBox, QFrame, QLabel, QVBoxLayout, QWidget
 
 from app.cautions import cautions, intended_use
+from app.fitted import FittedDialog, RollArea, fit
 from app.theme import Theme
 from storage.codes import LOINC_NOTICE
 
 
-class AboutDialog(QDialog):
+class AboutDialog(FittedDialog):
     """Shows the cautions again. Esc closes it."""
 
     def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setWindowTitle(self.tr("About and cautions"))
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        column = QVBoxLayout(self)
-        column.setContentsMargins(theme.px(24), theme.px(20), theme.px(24), theme.px(16))
+        inside = QWidget()
+        column = QVBoxLayout(inside)
+        column.setContentsMargins(theme.px(4), 0, theme.px(4), 0)
         column.setSpacing(theme.px(10))
         title = QLabel(f"Luffmark {_version()}")
         title.setProperty("role", "title")
@@ -29,10 +31,19 @@ class AboutDialog(QDialog):
             label.setWordWrap(True)
             label.setTextFormat(Qt.TextFormat.PlainText)
             column.addWidget(label)
+        column.addStretch(1)
         buttons = QDialogButtonBox(QDialogButtonBox.StandardButton.Close)
         buttons.rejected.connect(self.close)
-        column.addWidget(buttons)
-        self.resize(theme.px(600), theme.px(480))
+        whole = QVBoxLayout(self)
+        whole.setContentsMargins(theme.px(20), theme.px(20), theme.px(20), theme.px(16))
+        self.roll = RollArea(inside)
+        self.roll.setFocusPolicy(Qt.FocusPolicy.StrongFocus)  # nothing inside takes the keys that roll it
+        self.roll.setAccessibleName(self.windowTitle())
+        self.roll.setFrameShape(QFrame.Shape.StyledPanel)
+        self.roll.setProperty("keys", True)
+        whole.addWidget(self.roll, 1)
+        whole.addWidget(buttons)
+        fit(self, theme, 600, 500)
 
 
 def _version() -> str:

@@ -4,14 +4,15 @@ from __future__ import annotations
 
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtWidgets import QDialog, QDialogButtonBox, QPushButton, QTextBrowser, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QDialogButtonBox, QPushButton, QTextBrowser, QVBoxLayout, QWidget
 
 from app.explain import Explanation
 from app.explain_html import html_of
+from app.fitted import FittedDialog, fit
 from app.theme import Theme
 
 
-class ExplainDialog(QDialog):
+class ExplainDialog(FittedDialog):
     """Shows one explanation. Esc closes it."""
 
     def __init__(self, explanation: Explanation, theme: Theme, parent: QWidget | None = None) -> None:
@@ -33,7 +34,7 @@ class ExplainDialog(QDialog):
         column = QVBoxLayout(self)
         column.addWidget(self.text)
         column.addWidget(buttons)
-        self.resize(theme.px(640), theme.px(560))
+        fit(self, theme, 640, 560)
 
     def _copy(self) -> None:
         QGuiApplication.clipboard().setText(self.explanation.as_text())

@@ -6,7 +6,6 @@ from html import escape
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import (
-    QDialog,
     QHBoxLayout,
     QLabel,
     QPushButton,
@@ -18,6 +17,7 @@ from PySide6.QtWidgets import (
 
 from app.action_table import DEEDS
 from app.actions import help_of, keys_of, name_of
+from app.fitted import FittedDialog, fit
 from app.signs import Sign
 from app.theme import GasState, Theme, Tier, Verdict, state_word, tier_word, verdict_word
 
@@ -33,7 +33,7 @@ LINES = (
 )
 
 
-class HelpDialog(QDialog):
+class HelpDialog(FittedDialog):
     """Shows help. Esc closes it."""
 
     def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
@@ -46,6 +46,7 @@ class HelpDialog(QDialog):
         shapes = QScrollArea()
         shapes.setAccessibleName(self.tr("What the shapes mean"))
         shapes.setWidgetResizable(True)
+        shapes.setProperty("keys", True)
         shapes.setWidget(_shapes(theme, self.tr("Shapes")))
         shapes.setFixedWidth(theme.px(230))
         row = QHBoxLayout()
@@ -56,7 +57,7 @@ class HelpDialog(QDialog):
         column = QVBoxLayout(self)
         column.addLayout(row, 1)
         column.addWidget(close, 0, Qt.AlignmentFlag.AlignRight)
-        self.resize(theme.px(980), theme.px(640))
+        fit(self, theme, 980, 640)
 
     def _html(self, theme: Theme) -> str:
         quiet = theme.colours.ink_quiet

@@ -19,7 +19,8 @@ from PySide6.QtWidgets import (
 
 from app.choice_row import ChoiceRow
 from app.copying import can_be_copied
-from app.fitted import FittedDialog, fit
+from app.fitted import FittedDialog, RollArea, fit
+from app.flow_row import FlowRow
 from app.formats import wall
 from app.operations.policy import PolicyInForce
 from app.policy_words import Rule, rules
@@ -30,6 +31,8 @@ from core.judgement.policy_check import check
 _RULE = Qt.ItemDataRole.UserRole
 _WIDTHS = (286, 84, 256, 180, 148)
 """Pixels of the columns at the smallest text: rule, strength, limits, for whom, how sure; then source."""
+_SOURCE = 260
+"""What the source needs at least."""
 
 
 class PolicyDialog(FittedDialog):
@@ -46,6 +49,7 @@ class PolicyDialog(FittedDialog):
         self.title, self.put_by = QLabel(), QLabel()
         self.title.setProperty("role", "title")
         self.put_by.setProperty("role", "quiet")
+        self.put_by.setWordWrap(True)
         self.notice = QLabel()
         self.notice.setWordWrap(True)
         self.notice.setTextFormat(Qt.TextFormat.PlainText)
@@ -66,6 +70,7 @@ class PolicyDialog(FittedDialog):
         self.close_it.clicked.connect(self.close)
         self.show_policy(found, reader)
         fit(self, theme, 1640, 960)
+        self._share_width()
 
     def _made_tree(self) -> QTreeWidget:
         tree = QTreeWidget()
@@ -85,12 +90,20 @@ class PolicyDialog(FittedDialog):
             tree.setColumnWidth(column, self._theme.px(width))
         return tree
 
+    def _share_width(self) -> None:
+        """Every column in view, however large the text: what a column cuts stands under the list."""
+        room, wanted = self.width() - self._theme.px(48), self._theme.px(sum(_WIDTHS) + _SOURCE)
+        share = min(room / wanted, 1.0)
+        for column, width in enumerate(_WIDTHS):
+            self.tree.setColumnWidth(column, round(self._theme.px(width) * share))
+
     def _lay_out(self) -> None:
         px = self._theme.px
-        head = QHBoxLayout()
+        over = QWidget()
+        head = FlowRow(over, px(12))
+        head.setContentsMargins(0, 0, 0, 0)
         head.addWidget(self.title)
-        head.addStretch(1)
-        head.addWidget(self.shown)
+        head.add_right(self.shown)
         self.detail.setWordWrap(True)
         self.detail.setTextFormat(Qt.TextFormat.PlainText)
         self.detail.setAlignment(Qt.AlignmentFlag.AlignTop)
@@ -99,8 +112,8 @@ class PolicyDialog(FittedDialog):
         card.setProperty("card", True)
         inside = QVBoxLayout(card)
         inside.setContentsMargins(px(14), px(10), px(14), px(10))
-        inside.addWidget(self.detail)
-        card.setMinimumHeight(px(132))
+        inside.addWidget(RollArea(self.detail))
+        card.setFixedHeight(min(px(132), 200))
         foot = QHBoxLayout()
         foot.addWidget(self.take_in)
         foot.addWidget(self.save)
@@ -109,7 +122,7 @@ class PolicyDialog(FittedDialog):
         column = QVBoxLayout(self)
         column.setContentsMargins(px(16), px(12), px(16), px(12))
         column.setSpacing(px(8))
-        column.addLayout(head)
+        column.addWidget(over)
         column.addWidget(self.put_by)
         column.addWidget(self.notice)
         column.addWidget(self.tree, 1)

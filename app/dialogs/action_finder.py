@@ -5,7 +5,6 @@ from __future__ import annotations
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QAction, QKeyEvent
 from PySide6.QtWidgets import (
-    QDialog,
     QHeaderView,
     QLineEdit,
     QTreeWidget,
@@ -15,10 +14,11 @@ from PySide6.QtWidgets import (
 )
 
 from app.actions import found, help_of, keys_of, name_of
+from app.fitted import FittedDialog, fit
 from app.theme import Theme
 
 
-class ActionFinder(QDialog):
+class ActionFinder(FittedDialog):
     """Searches the table of actions. `chosen` is the action to do after it has closed."""
 
     def __init__(self, actions: dict[str, QAction], theme: Theme, parent: QWidget | None = None) -> None:
@@ -41,7 +41,7 @@ class ActionFinder(QDialog):
         self.search.returnPressed.connect(self._take)
         self.list.itemActivated.connect(self._take)
         self._narrow("")
-        self.resize(theme.px(820), theme.px(520))
+        fit(self, theme, 820, 520)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() in (Qt.Key.Key_Down, Qt.Key.Key_Up) and self.search.hasFocus():

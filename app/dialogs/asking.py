@@ -91,10 +91,14 @@ class AskingDialog(FittedDialog):
         """What the accepting button does; the usual one closes the dialog."""
         self.accept()
 
-    def refuse(self, text: str) -> None:
-        """Say what is wrong."""
+    def say(self, text: str) -> None:
+        """Say something over the buttons; "" takes it back."""
         self.wrong.setText(text)
         self.grow()
+
+    def refuse(self, text: str) -> None:
+        """Say what is wrong."""
+        self.say(text)
         self.go.setEnabled(True)
 
 

@@ -96,6 +96,7 @@ class CorrectDialog(AskingDialog):
         self.list.header().setSectionResizeMode(2, QHeaderView.ResizeMode.Stretch)
         self.list.setTextElideMode(Qt.TextElideMode.ElideRight)
         self.list.currentItemChanged.connect(self._chosen)
+        self.list.setMinimumHeight(self.theme.px(112))
         self.add_body(self.list)
 
     def _add_fields(self, others: Mapping[str, str]) -> None:

@@ -154,7 +154,7 @@ class FileWork(SecretDialog):
     def work(self, operation: Operation, request: object, done: Any) -> None:
         """Do it; the form waits."""
         self.go.setEnabled(False)
-        self.wrong.setText(self.tr("Working..."))
+        self.say(self.tr("Working..."))
         self._end_work()
         self._runner = Runner(cast(Opener, _NoStore), self)
         self._runner.submit(operation, request, who=self._who, now=self._clock.now(), done=done, failed=self.failed)
@@ -172,7 +172,7 @@ class FileWork(SecretDialog):
     def show_told(self, lines: list[str]) -> None:
         """Say what came of it."""
         self._end_work()
-        self.wrong.clear()
+        self.say("")
         self.told.setPlainText("\n".join(lines))
         self.told.show()
         self.open_new.show()

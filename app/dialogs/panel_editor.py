@@ -9,7 +9,6 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeySequence, QShortcut
 from PySide6.QtWidgets import (
     QCheckBox,
-    QDialog,
     QFileDialog,
     QGridLayout,
     QHBoxLayout,
@@ -29,6 +28,7 @@ from app.dialogs.panel_sets import PanelSets
 from app.episode.traces import shown_as
 from app.episode_feed import shipped_titles
 from app.failure import failure_of
+from app.fitted import FittedDialog, fit
 from app.panels import Panel, PanelSet, drawable, from_toml, shipped, to_toml
 from app.phrases import computed_name
 from app.theme import Theme
@@ -39,7 +39,7 @@ from core.record.message import RecordError, refuse
 _KEY = Qt.ItemDataRole.UserRole
 
 
-class PanelEditor(QDialog):
+class PanelEditor(FittedDialog):
     """`kept(PanelSet)` when the person keeps them, `kept(None)` for the shipped ones; `sets.scope` says for whom.
     `set_kept(name, PanelSet)` when a set was saved under a name, or with None when it was forgotten."""
 
@@ -73,8 +73,7 @@ class PanelEditor(QDialog):
         self._lay_out()
         self._connect()
         self._show(panels.panels[0].key)
-        room = parent.window().size() if parent is not None else self.screen().availableGeometry().size()
-        self.resize(min(theme.px(860), room.width() - 24), min(theme.px(660), room.height() - 24))
+        fit(self, theme, 860, 660)
 
     def _lay_out(self) -> None:
         px = self._theme.px

@@ -7,7 +7,6 @@ from pathlib import Path
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import (
-    QDialog,
     QFileDialog,
     QHBoxLayout,
     QLabel,
@@ -18,12 +17,13 @@ from PySide6.QtWidgets import (
 )
 
 from app.failure import failure_of
+from app.fitted import FittedDialog, fit
 from app.theme import Theme
 from app.whole_file import write_whole
 from app.words import Reader, sentence
 
 
-class ProblemReportDialog(QDialog):
+class ProblemReportDialog(FittedDialog):
     """Shows the whole report; what is saved is what stands there."""
 
     def __init__(self, text: str, theme: Theme, parent: QWidget | None = None) -> None:
@@ -60,7 +60,7 @@ class ProblemReportDialog(QDialog):
         self.save.clicked.connect(self._ask_save)
         self.copy.clicked.connect(self._copy)
         self.leave.clicked.connect(self.reject)
-        self.resize(theme.px(760), theme.px(560))
+        fit(self, theme, 760, 560)
 
     def _ask_save(self) -> None:
         usual = str(Path.home() / "luffmark-report.txt")

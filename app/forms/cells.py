@@ -39,7 +39,7 @@ class Cell(QWidget):
         column.addWidget(self.note)
         self.note.setVisible(noted)
         if width:
-            self.setFixedWidth(theme.px(width))
+            self.setFixedWidth(max(theme.px(width), self.name.sizeHint().width()))
 
     def tell(self, text: str, *, strong: bool = False) -> None:
         """What is known of the value."""

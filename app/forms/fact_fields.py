@@ -106,6 +106,7 @@ class FactField:
             self.widget.setCurrentIndex(max(self.widget.findData(text), 0))
         elif isinstance(self.widget, QLineEdit):
             self.widget.setText(text)
+            self.widget.setCursorPosition(0)  # a text longer than its field is read from its beginning
 
     def take(self, record: Episode, at: Instant, clock: Callable[[Instant], str]) -> Instant | None:
         """Put there what was in force at a moment; since when, None where nothing was."""

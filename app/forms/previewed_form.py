@@ -14,7 +14,6 @@ from typing import Any
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import (
-    QDialog,
     QFrame,
     QHBoxLayout,
     QLabel,
@@ -26,6 +25,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.failure import Failure
+from app.fitted import FittedDialog, fit
 from app.forms.cells import Card
 from app.forms.typed import fields_of, put, read
 from app.operations.outcome import Outcome
@@ -36,7 +36,7 @@ from app.theme import Theme
 from app.words import Reader, sentence
 
 
-class PreviewedForm(QDialog):
+class PreviewedForm(FittedDialog):
     """Build fields in `build`; say what they want in `request`. `recorded` after it was done."""
 
     recorded = Signal(object)
@@ -172,32 +172,29 @@ class PreviewedForm(QDialog):
         self.said.setTextFormat(Qt.TextFormat.RichText)
         self.said.setWordWrap(True)
         self.said.setAlignment(Qt.AlignmentFlag.AlignTop)
-        self.said.setMinimumHeight(round(px(self.theme.type.body) * 1.3) * 3)
+        self.said.setMinimumHeight(round(px(self.theme.type.body) * 1.3) * 2)
         self.as_line.setProperty("role", "caption")
         self.as_line.setWordWrap(True)
         self.as_line.setTextFormat(Qt.TextFormat.PlainText)
         self.go.setProperty("role", "primary")
         self.go.setDefault(True)
         self.leave.setAutoDefault(False)
-        for button in (self.go, self.leave):
-            button.setMinimumHeight(px(44))
-        row = QHBoxLayout()
+        words = QVBoxLayout()
+        words.setSpacing(px(4))
+        words.addWidget(self.said, 1)
+        words.addWidget(self.as_line)
+        row = QHBoxLayout(foot)
+        row.setContentsMargins(px(14), px(10), px(14), px(12))
         row.setSpacing(px(8))
-        row.addWidget(self.as_line, 1)
-        row.addWidget(self.leave)
-        row.addWidget(self.go)
-        column = QVBoxLayout(foot)
-        column.setContentsMargins(px(14), px(10), px(14), px(12))
-        column.setSpacing(px(6))
-        column.addWidget(self.said)
-        column.addLayout(row)
+        row.addLayout(words, 1)
+        for button in (self.leave, self.go):
+            button.setMinimumHeight(px(44))
+            row.addWidget(button, 0, Qt.AlignmentFlag.AlignBottom)
         return foot
 
     def fit(self, width: int, height: int) -> None:
         """Take the size that is wanted at 100 %, as far as the screen has it; what does not fit scrolls."""
-        parent = self.parentWidget()
-        room = parent.window().size() if parent is not None else self.screen().availableGeometry().size()
-        self.resize(min(self.theme.px(width), room.width() - 24), min(self.theme.px(height), room.height() - 24))
+        fit(self, self.theme, width, height)
 
     def set_name(self, name: str) -> None:
         """What the form is for."""
