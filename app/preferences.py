@@ -31,6 +31,8 @@ class Preferences:
     recent_stores: tuple[str, ...] = ()
     window: tuple[int, ...] = ()
     person: str = ""
+    paper: str = "A4"
+    """What a handover is printed on: the one chosen last."""
     lock_minutes: int = 10
     backup_folder: str = ""
     witness_file: str = ""
@@ -110,6 +112,8 @@ def _accepted(key: str, value: Any) -> bool:
         return bool(value in ("light", "dark"))
     if key == "text_scale":
         return bool(1.0 <= value <= 2.0)
+    if key == "paper":
+        return bool(value in ("A4", "Letter"))
     if key == "gas_unit":
         return bool(value in ("mmHg", "kPa"))
     if key == "lock_minutes":

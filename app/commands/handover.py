@@ -53,24 +53,32 @@ def _gathered(context: Context, args: argparse.Namespace, suffix: str) -> int:
         content = sheet_content(gathered, reader, given_by=args.given_by, taken_by=args.taken_by)
         if args.close:
             return _close(context, store, gathered, content, args)
+        told = _answer(context, args, gathered, content, suffix)
         if args.out:
             operations.note_print(store, context.by, context.now(), f"{content.ward.shift}, {content.head}")
-    value = {
-        "from": zoned_iso(args.start, reader.zone), "to": zoned_iso(args.end, reader.zone),
-        "as_of": zoned_iso(gathered.shift.end, reader.zone), "head": gathered.printed_head,
+    context.answer(*told)
+    return 0
+
+
+def _answer(
+    context: Context, args: argparse.Namespace, gathered: Handover, content: SheetContent, suffix: str
+) -> tuple[str, dict[str, object]]:
+    """Write what was asked for; the answer in words and as a value."""
+    zone = context.reader().zone
+    value: dict[str, object] = {
+        "from": zoned_iso(args.start, zone), "to": zoned_iso(args.end, zone),
+        "as_of": zoned_iso(gathered.shift.end, zone), "head": gathered.printed_head,
         "episodes": [s.episode for s in gathered.shift.episodes], "see_first": content.ward.see_first,
     }  # fmt: skip
     if args.out is None:
-        context.answer(handover_text(content).rstrip(), value | {"text": handover_text(content)})
-        return 0
+        return handover_text(content).rstrip(), value | {"text": handover_text(content)}
+    value["file"] = str(args.out)
     if suffix == ".pdf":
         pages = _write_pdf(content, args.out, args.paper)
-        context.answer(f"{args.out}: {pages} pages, {len(content.episodes)} episodes. {content.head}.",
-                       value | {"file": str(args.out), "pages": pages, "paper": args.paper})  # fmt: skip
-        return 0
+        told = f"{args.out}: {pages} pages, {len(content.episodes)} episodes. {content.head}."
+        return told, value | {"pages": pages, "paper": args.paper}
     write_whole(args.out, handover_text(content).encode("utf-8"))
-    context.answer(f"{args.out}: {len(content.episodes)} episodes. {content.head}.", value | {"file": str(args.out)})
-    return 0
+    return f"{args.out}: {len(content.episodes)} episodes. {content.head}.", value
 
 
 def _close(

@@ -14,6 +14,7 @@ from app.failure import Failure
 from app.left_behind import HANDOVERS, OwnFolder
 from app.operations.outcome import Outcome
 from app.words import sentence
+from core.record.message import Message
 
 if TYPE_CHECKING:
     from app.dialogs.close_handover import CloseHandoverDialog
@@ -25,7 +26,6 @@ class ClosingDeeds(WritingDeeds):
     """Closes handovers and shows closed ones; the menu Review builds on it."""
 
     _dialog: CloseHandoverDialog | None = None
-    _names = ("", "", "A4")
     _printed = ""
     _copy_to: Path | None = None
     _opened_folder: OwnFolder | None = None
@@ -37,28 +37,20 @@ class ClosingDeeds(WritingDeeds):
 
         shift, session = self.window.shift(), self.model.session
         told = span(shift.start, min(shift.end, session.moment()), session.zone)
-        self._dialog = CloseHandoverDialog(told, session.person, self.close_handover, self.window.theme, self.window)
+        self._dialog = CloseHandoverDialog(
+            told, (session.person, self.window.preferences.paper), self.close_handover, self.window.theme, self.window
+        )
         self._dialog.open()
 
     def close_handover(self, given_by: str, taken_by: str, paper: str) -> None:
         """Gather the shift, print it, keep the print."""
-        from app.operations import handover
+        from app.operations import handover_sheet
 
-        self._names = given_by, taken_by, paper
-        self.model.ask(handover.prepare, self.window.doers.ward.handover_request(), done=self._gathered_to_close,
-                       failed=self._not_closed)  # fmt: skip
-
-    def _gathered_to_close(self, outcome: Outcome[Handover]) -> None:
-        from app.operations import handover
-        from app.sheet.content import sheet_content
-        from app.sheet.printing import pdf_bytes
-
-        given_by, taken_by, paper = self._names
-        content = sheet_content(outcome.value, self.window.plain_reader, given_by=given_by, taken_by=taken_by)
-        data, _ = pdf_bytes(content, paper)
-        name = handover.closed_name(content.ward.shift, given_by, taken_by)
-        request = handover.ClosedHandover(name, data, handover.facts_of(outcome.value))
-        self.model.ask(handover.close, request, done=self._closed, failed=self._not_closed)
+        self.window.prefer(paper=paper)
+        request = handover_sheet.CloseRequest(
+            self.window.doers.ward.handover_request(), self.window.plain_reader, given_by, taken_by, paper
+        )
+        self.model.ask(handover_sheet.close, request, done=self._closed, failed=self._not_closed)
 
     def _closed(self, outcome: Outcome[str]) -> None:  # noqa: ARG002
         if self._dialog is not None:
@@ -95,9 +87,13 @@ class ClosingDeeds(WritingDeeds):
             "No printer is set up on this computer. Ctrl+P saves the sheet as a PDF.")  # fmt: skip
         self.window.say(told)
         self._printed = f"{content.ward.shift}, {content.head}"
-        preview = HandoverPreview(content, self.window)
+        preview = HandoverPreview(content, self.window, self.window.preferences.paper)
         preview.accepted.connect(self._note_print)
+        preview.failed.connect(self._not_on_paper)
         preview.open()
+
+    def _not_on_paper(self, message: Message) -> None:
+        self.window.say(sentence(message, self.window.reader))
 
     def _note_print(self) -> None:
         self.window.doers.ward.note_print(self._printed)
@@ -161,7 +157,7 @@ class ClosingDeeds(WritingDeeds):
 
         path = self.ask_path(self.tr("Blank paper form"), "handover-form.pdf", self.tr("PDF (*.pdf)"))
         if path is not None:
-            self.write(path, blank_bytes()[0])
+            self.write(path, blank_bytes(self.window.preferences.paper)[0])
 
     def do_shift_times(self) -> None:
         """Ask at which times of day shifts begin."""

@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
-from app.failure import Failure, failure_of
+from app.failure import Failure
 from app.operations.outcome import Outcome
 from app.ward.ordering import Order, Shown
 from app.words import sentence
@@ -102,23 +102,18 @@ class WardDeeds(Doer):
 
     def save_handover(self, path: Path) -> None:
         """Write the sheet of this shift."""
-        from app.operations import handover
+        from app.operations import handover_sheet
 
         self._path = path
-        self.model.ask(handover.prepare, self.handover_request(), done=self._print, subject="handover sheet")
+        window = self.window
+        request = handover_sheet.SheetRequest(
+            self.handover_request(), window.plain_reader, path, window.preferences.paper, self.model.session.person
+        )
+        self.model.ask(handover_sheet.write, request, done=self._printed, subject="handover sheet")
 
-    def _print(self, outcome: Outcome[handover.Handover]) -> None:
-        from app.sheet.content import sheet_content
-        from app.sheet.printing import write_pdf
-
-        content = sheet_content(outcome.value, self.window.reader, given_by=self.model.session.person)
-        try:
-            write_pdf(content, self._path)
-        except OSError as error:
-            self.window.show_failure(failure_of(error))
-            return
-        self.window.say(self.tr("{path} was written.").format(path=self._path))
-        self.note_print(f"{content.ward.shift}, {content.head}")
+    def _printed(self, outcome: Outcome[int]) -> None:
+        told = self.tr("{path} was written: {pages} pages.")
+        self.window.say(told.format(path=self._path, pages=outcome.value))
 
     def note_print(self, detail: str) -> None:
         """Keep in the chain what was printed."""

@@ -83,16 +83,16 @@ class WritingDeeds(Doer):
         name = "values-deidentified.csv" if wanted.deidentified else "values.csv"
         path = self.ask_path(self.tr("Export values"), name, self.tr("CSV (*.csv)"))
         if path is not None:
-            self.export(wanted, path)
+            self.export(wanted, path, replace=True)  # the dialog asked, where the file is there
 
-    def export(self, wanted: Wanted, path: Path) -> None:
-        """Write what was chosen; whoever chose a file that is there was asked about it."""
+    def export(self, wanted: Wanted, path: Path, *, replace: bool = False) -> None:
+        """Write what was chosen; over a file that is there only with `replace`."""
         from app.operations import export
 
         shift = self.window.shift() if wanted.shift_only else None
         request = export.ExportRequest(
             path, wanted.episodes, self.model.session.as_known_at, wanted.channels,
-            shift.start if shift else None, shift.end if shift else None, wanted.dictionary, replace=True,
+            shift.start if shift else None, shift.end if shift else None, wanted.dictionary, replace=replace,
         )  # fmt: skip
         self._export_path = path
         if wanted.deidentified:

@@ -13,10 +13,10 @@ from app.theme import Theme
 
 
 class CloseHandoverDialog(AskingDialog):
-    """Asks for giver, taker and paper and hands them to `close`."""
+    """Asks for giver, taker and paper and hands them to `close`; `usual` are the person and the paper chosen last."""
 
     def __init__(
-        self, shift: str, person: str, close: Callable[[str, str, str], None], theme: Theme,
+        self, shift: str, usual: tuple[str, str], close: Callable[[str, str, str], None], theme: Theme,
         parent: QWidget | None = None,
     ) -> None:  # fmt: skip
         super().__init__(self.tr("Close handover"), self.tr("Close for good"), theme, parent)
@@ -25,9 +25,10 @@ class CloseHandoverDialog(AskingDialog):
                                "Later entries and corrections do not change it.").format(shift=shift))  # fmt: skip
         about.setWordWrap(True)
         self.add_body(about)
-        self.given, self.taken, self.paper = QLineEdit(person), QLineEdit(), Chooser()
+        self.given, self.taken, self.paper = QLineEdit(usual[0]), QLineEdit(), Chooser()
         for name in PAPERS:
             self.paper.addItem(name, name)
+        self.paper.setCurrentIndex(max(0, self.paper.findData(usual[1])))
         self.field(self.tr("Given by"), self.given)
         self.field(self.tr("Taken by"), self.taken)
         self.field(self.tr("Paper"), self.paper)

@@ -2,16 +2,20 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtPrintSupport import QPrinter, QPrintPreviewDialog
 from PySide6.QtWidgets import QWidget
 
 from app.sheet.printing import paint, set_paper
 from app.sheet.shapes import SheetContent
+from core.record.message import Message, RecordError
 
 
 class HandoverPreview(QPrintPreviewDialog):
     """Shows every page; printer, copies and pages are chosen with its own buttons."""
+
+    failed = Signal(object)
+    """A `Message`: nothing came onto paper, and why."""
 
     def __init__(self, content: SheetContent, parent: QWidget | None = None, paper: str = "A4") -> None:
         self._printer = QPrinter(QPrinter.PrinterMode.HighResolution)  # the dialog does not keep it alive
@@ -21,8 +25,16 @@ class HandoverPreview(QPrintPreviewDialog):
         self.pages = 0
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.setWindowTitle(f"{content.ward.title}, {content.ward.shift}")
-        self.paintRequested.connect(self._paint)
+        self.paintRequested.connect(self.print_on)
         self.resize(1000, 760)
 
-    def _paint(self, printer: QPrinter) -> None:
-        self.pages = paint(self._content, printer, printer.resolution())
+    def print_on(self, printer: QPrinter) -> None:
+        """Paint every page on a printer or into the preview; say so where the printer takes nothing."""
+        try:
+            self.pages = paint(self._content, printer, printer.resolution())
+        except RecordError as error:
+            self.pages = 0
+            self.failed.emit(error.message)
+            return
+        if printer.printerState() in (QPrinter.PrinterState.Error, QPrinter.PrinterState.Aborted):
+            self.failed.emit(Message("handover.printer", {"printer": printer.printerName() or "the printer"}))

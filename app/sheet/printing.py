@@ -71,9 +71,16 @@ def set_paper(device: QPagedPaintDevice, paper: str) -> None:
 
 
 def paint(content: SheetContent, device: QPagedPaintDevice, dots_per_inch: int) -> int:
-    """Paint every page on a device that is set up; the number of pages. Reports progress by page."""
+    """Paint every page on a device that is set up; the number of pages. Reports progress by page.
+
+    Raises:
+        RecordError: `handover.printer`, where the device takes nothing: it is off, or not there.
+    """
     size = device.pageLayout().fullRectPoints()
-    painter = QPainter(device)
+    painter = QPainter()
+    if not painter.begin(device):
+        name = device.printerName() if hasattr(device, "printerName") else ""
+        raise refuse("handover.printer", printer=name or "the printer")
     try:
         return _Job(content, device, Press(painter, dots_per_inch), float(size.width()), float(size.height())).run()
     finally:

@@ -39,6 +39,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "handover.backwards": "The shift ends ({end:time}) before it starts ({start:time}).",
     "handover.not_begun": "The shift that begins {start:time} has not begun by {now:time}.",
     "handover.paper": "'{paper}' is no paper. Accepted: {accepted}.",
+    "handover.printer":
+        "Nothing was printed: {printer} takes nothing. Choose another printer, or save the sheet as a PDF (Ctrl+P).",
     "handover.too_long": "A shift of {hours:0} h is too long: at most {accepted} h are accepted.",
     "intake.cancelled": "The intake of {path} was stopped: nothing was taken.",
     "intake.overtaken":
@@ -100,7 +102,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.missing": "There is no store {path}. Take in a file to make one, or name another.",
     "store.needs_passphrase": "{path} is encrypted. Give its passphrase (--passphrase-fd N).",
     "store.network_share": "{path} lies on a network share ({kind}), where locks cannot be relied on. "
-        "Use a local disk.",
+        "Use a local disk: copy the store there, with the key file beside it if there is one.",
     "store.newer": "{path} is of format {format}; this program reads up to {accepted}. Update the program.",
     "store.newer_read_only": "{path} was written by a newer program (format {format}): it is open for reading only. "
         "Update the program to record.",
