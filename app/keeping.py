@@ -222,8 +222,9 @@ class Keeping(QObject):
         self._tell_disks()
 
     def _backup_failed(self, failure: Failure) -> None:
-        """Silence would be taken for a backup."""
-        told = self.tr("No backup was taken.") + " " + sentence(failure.message, self._window.reader)
+        """Silence would be taken for a backup. Why is said with it, or already stands there."""
+        why = sentence(failure.message, self._window.reader) if failure.message.key not in DAMAGE else ""
+        told = f"{self.tr('No backup was taken.')} {why}".rstrip()
         self.notices.tell(BACKUP, told, ways=ways_out_of(failure.message.key))
 
     def _troubled(self, failure: Failure) -> None:

@@ -110,8 +110,9 @@ class NoticeStrip(QFrame):
         self.setVisible(bool(text))
 
     def _show_ways(self) -> None:
-        wanted = {way.key: way for told in self._ways.values() for way in told}
-        if wanted.keys() == self.ways.keys():
+        order = (*self._lasting, *self._passing)
+        wanted = {way.key: way for key in order for way in self._ways[key]}
+        if list(wanted) == list(self.ways):
             return
         for button in self.ways.values():
             self._flow.removeWidget(button)

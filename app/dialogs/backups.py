@@ -108,7 +108,7 @@ class BackupsDialog(AskingDialog):
 
     def submit(self) -> None:
         self.go.setEnabled(False)
-        self.wrong.setText(self.tr("Working..."))
+        self.say(self.tr("Working..."))
         self._keeper.take_now()
 
     def _stands(self, found: backups.Rotated) -> None:

@@ -98,7 +98,7 @@ class NewStoreDialog(SecretDialog):
             line.clear()
         self.show_typed.setEnabled(not without)
         note = self.tr("The file will not be encrypted, and the window's title will say so.")
-        self.wrong.setText(note if without else "")
+        self.say(note if without else "")
 
     def submit(self) -> None:
         if self.without.isChecked() or not self.refuse_new(self._new.text(), self._again.text()):
@@ -184,8 +184,8 @@ class RecoveryCodeDialog(AskingDialog):
         self.body.addWidget(_text(told.format(store=name)))
         self.code = QLineEdit(code)
         self.code.setReadOnly(True)
-        fixed = QFontDatabase.systemFont(QFontDatabase.SystemFont.FixedFont)
-        self.code.setFont(fixed)
+        family = QFontDatabase.systemFont(QFontDatabase.SystemFont.FixedFont).family()
+        self.code.setStyleSheet(f"font-family: '{family}'; font-size: {theme.px(theme.type.emphasis)}px;")
         self.code.setAccessibleName(self.tr("Recovery code"))
         self.code.setCursorPosition(0)
         self.body.addWidget(self.code)
@@ -214,7 +214,7 @@ class RecoveryCodeDialog(AskingDialog):
 
     def _copy(self) -> None:
         QGuiApplication.clipboard().setText(self._code)
-        self.wrong.setText(self.tr("Copied. The clipboard keeps it until something else is copied."))
+        self.say(self.tr("Copied. The clipboard keeps it until something else is copied."))
 
     def _print(self) -> None:
         from PySide6.QtPrintSupport import QPrintDialog, QPrinter

@@ -54,7 +54,7 @@ class PinByCodeDialog(AskingDialog):
             self.refuse(self.tr("The two PINs are not the same."))
         else:
             self.go.setEnabled(False)
-            self.wrong.setText(self.tr("One moment..."))
+            self.say(self.tr("One moment..."))
             request = operations.NewPin(self.initials.text(), self.pin.text(), self.code.text())
             self._model.ask(operations.pin_by_code, request, done=self._set, failed=self.failed)
 

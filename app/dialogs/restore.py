@@ -111,7 +111,7 @@ def _newer_words(made: backups.Restored, reader: Reader) -> list[str]:
     if told >= MOST_TOLD:
         lines.append(_tr("Only the newest {count} entries are listed one by one.").format(count=MOST_TOLD))
     if made.newer.others:
-        lines.append(_tr("and {count} documents, policies or sign-ins").format(count=made.newer.others))
+        lines.append(_tr("Beside these, documents, policies and sign-ins: {count}").format(count=made.newer.others))
     lines += ["", _tr("The old file is left as it is. 'Save from a damaged store' keeps these entries too.")]
     return lines
 

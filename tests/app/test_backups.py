@@ -3,13 +3,15 @@
 from collections import namedtuple
 
 import pytest
+from PySide6.QtWidgets import QFileDialog
 
+from app.backups import folder_for
 from app.clock import still
 from app.dialogs.backups import BackupsDialog
 from app.dialogs.restore import RestoreDialog
 from app.dialogs.salvage import SalvageDialog
 from app.operations import backup as operations
-from app.operations.backup import RestoreRequest
+from app.operations.backup import RestoreRequest, Rotation
 from app.preferences import Preferences
 from app.window import MainWindow
 from core.record.instant import HOUR
@@ -83,6 +85,57 @@ def test_a_disk_that_is_nearly_full_is_said_until_there_is_room(qtbot, path, mon
         window.keeping.backups.look()
         settled(qtbot, window)
         assert window.keeping.notices.plain() == ""
+
+
+def test_of_one_disk_one_word_is_said(qtbot, path, monkeypatch):
+    with open_window(qtbot, path) as window:
+        monkeypatch.setattr(operations.shutil, "disk_usage", lambda _: Usage(10**12, 10**12 - 10**7, 10**7))
+        window.keeping.surroundings.look()
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert window.keeping.notices.plain().count("disk") == 1
+        assert "nothing more can be" in window.keeping.notices.plain()  # the stronger of the two
+        monkeypatch.setattr(operations.shutil, "disk_usage", lambda _: Usage(10**12, 0, 10**12))
+        window.keeping.surroundings.look()
+        window.keeping.backups.look()
+        settled(qtbot, window)
+        assert window.keeping.notices.plain() == ""
+
+
+def test_two_stores_of_one_name_keep_their_backups_apart_in_a_chosen_folder(tmp_path):
+    stores = [tmp_path / ward / "ward.luffmark" for ward in ("a", "b")]
+    chosen = {folder_for(str(tmp_path / "backups"), path) for path in stores}
+    assert len(chosen) == 2
+    for folder, path in zip(sorted(chosen), stores, strict=True):
+        path.parent.mkdir()
+        with Store.create(path, now=NOW) as store:
+            for hours in range(30):
+                operations.rotate(store, "AB", NOW + hours * HOUR, Rotation(_made(folder), now=True))
+        assert len(backups_in(folder, path)) == 14  # twelve hours, and one of each day
+    assert {len(backups_in(f, stores[0])) for f in chosen} == {14}
+
+
+def _made(folder):
+    folder.mkdir(parents=True, exist_ok=True)
+    return folder
+
+
+def test_another_folder_leaves_the_old_backups_and_says_so(qtbot, path, tmp_path, monkeypatch):
+    with open_window(qtbot, path) as window:
+        window.keeping.backups.take_now()
+        settled(qtbot, window)
+        window.actions_by_key["backups"].trigger()
+        dialog = next(d for d in window.findChildren(BackupsDialog) if d.isVisible())
+        assert dialog.table.rowCount() == 1
+        monkeypatch.setattr(QFileDialog, "getExistingDirectory", lambda *_: str(tmp_path / "disk"))
+        dialog.folder.click()
+        assert "The 1 backups" in dialog.wrong.text()
+        assert "do not expire" in dialog.wrong.text()
+        assert dialog.table.rowCount() == 0
+        dialog.go.click()
+        until(qtbot, lambda: dialog.table.rowCount() == 1)
+        assert next(iter((tmp_path / "disk").rglob("*.luff"))).parent.parent == tmp_path / "disk"
+        dialog.reject()
 
 
 def test_a_user_backs_up_damages_and_restores_from_the_window(qtbot, path):

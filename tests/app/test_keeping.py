@@ -5,12 +5,14 @@ from functools import partial
 import pytest
 
 from app.clock import still
+from app.dialogs.restore import RestoreDialog
 from app.preferences import Preferences
 from app.runner import Runner
 from app.session import Session, SessionModel
 from app.window import MainWindow
 from storage import place
-from storage.engine import raw_connection
+from storage.backup_rotation import backups_in
+from storage.engine import PAGE_BYTES, raw_connection
 from storage.store import Store
 from tests.support.open_window import NOW, ZONE, make_store, open_window, settled, until
 
@@ -68,6 +70,37 @@ def test_a_store_that_another_program_holds_is_read_and_takes_entries_once_it_is
         settled(qtbot, window)
         window.strip.line.returnPressed.emit()
         until(qtbot, lambda: window.model.session.head > head)
+
+
+def test_a_damaged_page_that_opening_does_not_read_is_told_soon_after_with_the_ways_out(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    with open_window(qtbot, path) as window:
+        window.keeping.backups.take_now()
+        settled(qtbot, window)
+    lose_page_of(path, "ix_batch_recorded_at")
+    with open_window(qtbot, path) as window:
+        backups, notices = window.keeping.backups, window.keeping.notices
+        assert notices.plain() == ""
+        backups._look_first()  # no backup is due: the pages are read all the same
+        until(qtbot, lambda: "is damaged" in notices.plain())
+        assert list(notices.ways) == ["restore", "salvage"]
+        notices.seen.click()
+        assert "is damaged" in notices.plain()  # it stays for as long as it is so
+        notices.ways["restore"].click()
+        dialog = next(d for d in window.findChildren(RestoreDialog) if d.isVisible())
+        assert dialog.source.text() == str(max(backups_in(backups.folder, path).items())[1])
+        assert dialog.new.text().endswith("ward-restored.luffmark")
+        dialog.reject()
+
+
+def lose_page_of(path, index):
+    """The disk loses the first page of an index."""
+    c = raw_connection(path, None)
+    (page,) = c.execute("SELECT rootpage FROM sqlite_master WHERE name = ?", (index,)).fetchone()
+    c.close()
+    with path.open("r+b") as file:
+        file.seek((page - 1) * PAGE_BYTES)
+        file.write(b"\xff" * PAGE_BYTES)
 
 
 def test_a_network_share_is_refused_with_the_reason(qtbot, tmp_path, monkeypatch):
