@@ -84,16 +84,15 @@ class Plan:
         with np.errstate(all="ignore"):
             for start in range(0, size, _CHUNK):
                 part = slice(start, min(start + _CHUNK, size))
-                out[part] = self._part([a if a.ndim == 0 else a[part] for a in flat])
+                self._part([a if a.ndim == 0 else a[part] for a in flat], out[part])
         return out.reshape(shape)
 
-    def _part(self, values: Sequence[Values]) -> Values:
-        found = np.asarray(self.body(*values), dtype=np.float64)
-        bad = _outside(found, self.result)
+    def _part(self, values: Sequence[Values], out: Values) -> None:
+        out[...] = self.body(*values)
+        defined = _inside(out, self.result)
         for (_, domain), value in zip(self.inputs, values, strict=True):
-            outside = _outside(value, domain)
-            bad = outside if bad is None else bad if outside is None else bad | outside
-        return found if bad is None else np.where(bad, nan, found)
+            defined &= _inside(value, domain)
+        np.copyto(out, nan, where=~defined)  # in place: `np.where` costs five times as much
 
     def why(self, values: Sequence[float]) -> Message | None:
         """Why the figure is undefined for these inputs, or None where it is defined."""
@@ -113,11 +112,9 @@ class Plan:
         return Message(key, values | {"low": low, "high": high, "unit": domain.unit})
 
 
-def _outside(values: Values, domain: Domain) -> Any:
-    """A mask of what lies outside, or None when nothing does (two reductions are cheaper than two masks)."""
-    if values.size and domain.low <= values.min() and values.max() <= domain.high:
-        return None
-    return ~((values >= domain.low) & (values <= domain.high))
+def _inside(values: Values, domain: Domain) -> Any:
+    """A mask of what lies in a domain; NaN never does."""
+    return (values >= domain.low) & (values <= domain.high)
 
 
 PLANS: dict[str, Plan] = {}
