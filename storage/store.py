@@ -5,7 +5,7 @@ A store is safe to share between threads: writers take turns, readers see one co
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from types import TracebackType
@@ -181,10 +181,19 @@ class Store(StoreCare):
         drafts = tuple(DraftEntry(e) for e in entries)
         return self.append_drafts((DraftBatch(by, operation, drafts, chunks, source),), (now,))[0]
 
-    def append_drafts(self, drafts: Iterable[DraftBatch], times: Iterable[Instant]) -> list[Receipt]:
-        """Add batches in order in one transaction, each recorded at its time (never before the one before)."""
+    def append_drafts(
+        self, drafts: Iterable[DraftBatch], times: Iterable[Instant], *,
+        unless: Callable[[Changes], bool] | None = None, since: int = 0,
+    ) -> list[Receipt]:  # fmt: skip
+        """Add batches in order in one transaction, each recorded at its time (never before the one before).
+
+        `unless` looks, inside the write lock, at what was recorded after `since`; where it says so, nothing is added
+        and the list is empty.
+        """
         with self._opened.database.write() as connection:
-            receipts = []
+            receipts: list[Receipt] = []
+            if unless is not None and unless(changes_between(connection, since)):
+                return receipts
             for draft, now in zip(drafts, times, strict=True):
                 receipt = append_batch(connection, draft, now)
                 index.note_batch(connection, draft, receipt)

@@ -14,7 +14,6 @@ from app.clock import REAL, running_from
 from app.deeds.making import MakingDeeds, usual_folder
 from app.left_behind import SAMPLE, OwnFolder
 from app.local_zone import local_zone
-from app.operations.intake import ReadRequest
 from app.runner import Opener, Runner
 from app.session import Session, SessionModel
 from storage.store import Store
@@ -125,31 +124,21 @@ class FileDeeds(MakingDeeds):
             self._then_take_in = True
             self.do_new_store()
             return
-        chosen, _ = QFileDialog.getOpenFileName(
+        chosen, _ = QFileDialog.getOpenFileNames(
             self.window,
-            self.tr("Take in a file"),
+            self.tr("Take in files"),
             str(Path.home()),
             self.tr("Files of values (*.csv *.tsv *.txt *.xlsx *.ods *.hl7 *.json *.ndjson);;All files (*)"),
         )
         if chosen:
-            self.take_in(Path(chosen))
+            self.take_in(*map(Path, chosen))
 
-    def take_in(self, path: Path) -> QDialog:
-        """Show what a file holds; the dialog takes it in. A table is mapped first."""
-        from storage.intake.file_kinds import FileKind, kind_of
+    def take_in(self, *paths: Path) -> QDialog:
+        """Show what files hold, one after the other; a dialog takes each in. A table is mapped first."""
+        from app.intake_window.files_in_turn import FilesInTurn
 
-        try:
-            kind = kind_of(path)
-        except OSError:
-            kind = FileKind.LOG_CSV  # the dialog says what is wrong with it
-        if kind is not FileKind.TABLE:
-            return self._show_intake(ReadRequest(path, zone=self.model.session.zone, episodes=self._episodes()))
-        from app.intake_window.mapping_dialog import MappingDialog
-
-        asking = MappingDialog(self.model, path, self.window.reader, self.window.theme, self.window)
-        asking.ready.connect(self._show_intake)
-        asking.open()
-        return asking
+        turn = FilesInTurn(self.model, paths, self._episodes(), self.window)
+        return turn.begin()
 
     def do_taken(self) -> None:
         """Show the files that were taken in."""
@@ -159,13 +148,6 @@ class FileDeeds(MakingDeeds):
 
     def _episodes(self) -> tuple[str, ...]:
         return tuple(self.window.feed.answers) if self.window.feed is not None else ()
-
-    def _show_intake(self, request: ReadRequest) -> QDialog:
-        from app.dialogs.intake import IntakeDialog
-
-        dialog = IntakeDialog(self.model, request, self.window.reader, self.window.theme, self.window)
-        dialog.open()
-        return dialog
 
     def do_save_handover(self) -> None:
         """Ask where, write the handover sheet as PDF."""

@@ -3,47 +3,35 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from itertools import islice
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QElapsedTimer
-from PySide6.QtWidgets import (
-    QAbstractItemView,
-    QCheckBox,
-    QHeaderView,
-    QLabel,
-    QProgressBar,
-    QTableWidget,
-    QTableWidgetItem,
-    QWidget,
-)
+from PySide6.QtCore import QElapsedTimer, Signal
+from PySide6.QtWidgets import QCheckBox, QProgressBar, QWidget
 
-from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
-from app.formats import inert
-from app.intake_window.new_rows import new_rows
+from app.intake_window.code_rows import CodeRows
+from app.intake_window.found_table import MOST_ROWS, FoundTable
 from app.intake_window.patient_rows import PatientRows
 from app.operations import intake as intake_operations
+from app.operations import mapping as mapping_operations
 from app.operations.intake import ReadRequest, TakeRequest
 from app.operations.outcome import Outcome
+from app.plain_label import plain_label
 from app.runner import Progress
 from app.session import SessionModel
 from app.theme import Theme
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:
-    from storage.intake.findings import Doubt, Intake, Refusal
-
-MOST_ROWS = 500
-"""Rows of the table; a file with more faults is not repaired by reading on."""
-MOST_LETTERS = 40
-"""Letters of a value: the sentence beside it needs the room."""
+    from storage.intake.findings import Intake
 
 
 class IntakeDialog(AskingDialog):
-    """Reads, shows, and takes in when told to. Leaving stops a reading that still runs."""
+    """Reads, shows, and takes in when told to; `taken()` when it is in. Leaving stops a reading that still runs."""
+
+    taken = Signal()
 
     def __init__(
         self, model: SessionModel, file: Path | ReadRequest, reader: Reader, theme: Theme,
@@ -56,42 +44,29 @@ class IntakeDialog(AskingDialog):
         self.go.setText(self.tr("Take it in"))
         self._model, self._path, self._reader = model, path, reader
         self.intake: Intake | None = None
-        self.summary = QLabel()
+        self.summary = plain_label()
         self.summary.setWordWrap(True)
         self.bar = QProgressBar()
         self.bar.setTextVisible(False)
         self.bar.setAccessibleName(self.tr("Progress"))
-        self.table = QTableWidget(0, 4)
-        can_be_copied(self.table)
-        self.table.setAccessibleName(self.tr("Rows refused, in doubt, left aside, and what will be recorded"))
-        self.table.setHorizontalHeaderLabels(
-            [
-                self.tr("Line"),
-                self.tr("What"),
-                self.tr("Value"),
-                self.tr("Why and what is accepted; whose and when"),
-            ]
-        )
-        self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        self.table.setWordWrap(True)
-        self.table.verticalHeader().hide()
-        for column in range(3):
-            self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
-        self.table.horizontalHeader().setSectionResizeMode(3, QHeaderView.ResizeMode.Stretch)
-        self.table.horizontalHeader().sectionResized.connect(self._fit_rows)
-        self.leave_out = QCheckBox(self.tr("Leave the refused rows out; this is recorded"))
+        self.table = FoundTable(reader)
+        self.table.ticked.connect(self._ticked)
+        self.leave_out = QCheckBox()
         self.leave_out.hide()
-        self.leave_out.toggled.connect(self._allow)
+        self.leave_out.toggled.connect(self._leave_all)
         self.body.addWidget(self.summary)
         self.body.addWidget(self.bar)
         self.add_body(self.table)
         self.patients = PatientRows(theme)
         self.patients.said.connect(self._patient_said)
-        self.left = QLabel()
+        self.codes = CodeRows(theme)
+        self.codes.said.connect(self._codes_said)
+        self.left = plain_label()
         self.left.setProperty("role", "quiet")
         self._clock = QElapsedTimer()
         self.body.addWidget(self.left)
         self.body.addWidget(self.patients)
+        self.body.addWidget(self.codes)
         self.body.addWidget(self.leave_out)
         self.table.hide()
         self.resize(theme.px(900), theme.px(560))
@@ -116,6 +91,13 @@ class IntakeDialog(AskingDialog):
         self._request = replace(self._request, patients={**self._request.patients, identifier: episode})
         self._ask()
 
+    def _codes_said(self, answers: dict[str, str]) -> None:
+        """A person says what codes are: that is kept, and the file is read again with it."""
+        self.go.setEnabled(False)
+        self.codes.setEnabled(False)
+        self._model.ask(mapping_operations.keep_codes, answers, failed=self._failed)
+        self._ask()
+
     def reject(self) -> None:
         """Leave; what still runs is stopped and rolled back."""
         self._model.runner.cancel(self._number)
@@ -127,8 +109,9 @@ class IntakeDialog(AskingDialog):
         self.go.setEnabled(False)
         self.bar.show()
         self.bar.setRange(0, 0)
+        self._clock.start()
         request = TakeRequest(self.intake, self.leave_out.isChecked())
-        self._number = self._model.ask(intake_operations.take, request, done=self._taken, failed=self._failed)
+        self._number = self._model.ask(intake_operations.take, request, done=self._taken, failed=self._not_taken)
 
     def _progressed(self, progress: Progress) -> None:
         if progress.number == self._number:
@@ -150,9 +133,18 @@ class IntakeDialog(AskingDialog):
         self.left.clear()
         self.summary.setText(self.words(outcome.value))
         self.patients.show_unknown(outcome.value.unknown_patients, self._request.episodes)
-        self._fill(outcome.value)
+        self.codes.setEnabled(True)
+        self.codes.show_unknown(outcome.value.unknown_codes)
+        self.table.show_found(outcome.value)
+        count = outcome.value.refused_rows
+        self.leave_out.setText(
+            self.tr("Leave the refused row out; this is recorded") if count == 1
+            else self.tr("Leave all {count} refused rows out; this is recorded").format(count=count)
+        )  # fmt: skip
+        self.leave_out.setChecked(False)
         self.leave_out.setVisible(bool(outcome.value.refusals) and outcome.value.whole)
         self._allow()
+        self.grow()
         self.go.setFocus()
 
     def words(self, intake: Intake) -> str:
@@ -190,35 +182,19 @@ class IntakeDialog(AskingDialog):
             parts.append(self.tr("There is nothing new in it."))
         return " ".join(parts)
 
-    def _fill(self, intake: Intake) -> None:
-        found: list[tuple[Refusal | Doubt, str]] = [(r, self.tr("refused")) for r in intake.refusals]
-        found += [(d, self.tr("in doubt")) for d in intake.doubts]
-        found += [(r, self.tr("left aside")) for r in intake.aside]
-        rows = [self._found_row(row, word) for row, word in found[:MOST_ROWS]]
-        new = {
-            "new": self.tr("new"),
-            "corrects": self.tr("corrects"),
-            "withdraws": self.tr("withdraws"),
-            "samples": self.tr("samples"),
-        }
-        rows += islice(new_rows(intake, self._reader, new), MOST_ROWS - len(rows))
-        self.table.setVisible(bool(rows))
-        self.table.setRowCount(len(rows))
-        for n, texts in enumerate(rows):
-            for column, text in enumerate(texts):
-                item = QTableWidgetItem(text[:MOST_LETTERS] if column == 2 else text)
-                item.setToolTip(inert(text))
-                self.table.setItem(n, column, item)
-        self.table.resizeRowsToContents()
+    def _leave_all(self, on: bool) -> None:
+        """All refused rows at once, those among them that the table does not show."""
+        self.table.tick_all(on)
+        self._allow()
 
-    def _fit_rows(self, column: int, *_: int) -> None:
-        """Sentences wrap: rows follow the width that the last column gets."""
-        if column == self.table.columnCount() - 1:
-            self.table.resizeRowsToContents()
-
-    def _found_row(self, row: Refusal | Doubt, word: str) -> tuple[str, str, str, str]:
-        what = f"{word}, {row.column}" if row.column else word
-        return str(row.line or ""), what, row.value, sentence(row.message, self._reader)
+    def _ticked(self) -> None:
+        """Rows were ticked one by one: when all are, that says as much as all at once."""
+        intake = self.intake
+        listed = intake is not None and intake.refused_rows <= MOST_ROWS
+        self.leave_out.blockSignals(True)
+        self.leave_out.setChecked(listed and self.table.open_rows == 0)
+        self.leave_out.blockSignals(False)
+        self._allow()
 
     def _allow(self) -> None:
         intake = self.intake
@@ -228,6 +204,17 @@ class IntakeDialog(AskingDialog):
 
     def _taken(self, outcome: Outcome[intake_operations.Taken]) -> None:  # noqa: ARG002
         self.accept()
+        self.taken.emit()
+
+    def _not_taken(self, failure: Failure) -> None:
+        """Why it was not taken. Where others have recorded of the same episodes since, it is read again and shown."""
+        if failure.message.key != "intake.overtaken":
+            self._failed(failure)
+            return
+        self._ask()
+        self.refuse(self.tr("Others have recorded for the same episodes meanwhile: the file is read again. Look at "
+                            "what is shown now, then take it in."))  # fmt: skip
+        self.go.setEnabled(False)
 
     def _failed(self, failure: Failure) -> None:
         self.bar.hide()

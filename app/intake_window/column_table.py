@@ -120,11 +120,7 @@ class ColumnTable(QTableWidget):
         box = QComboBox()
         box.setAccessibleName(self.tr("What {column} is").format(column=name))
         box.addItem(self.tr("left out"), "")
-        for group in _GROUPS:
-            for known in CHANNELS.values():
-                if known.group is group:
-                    box.addItem(known.name, known.key)
-        box.setMaxVisibleItems(24)
+        fill_channels(box)
         box.setCurrentIndex(max(0, box.findData(use.channel)))
         return box
 
@@ -162,6 +158,15 @@ class ColumnTable(QTableWidget):
         """The choice of a column's channel, or of its unit."""
         row = next(r for r in range(self.rowCount()) if (i := self.item(r, 0)) is not None and i.text() == column)
         return (self._units if unit else self._channels)[row]
+
+
+def fill_channels(box: QComboBox) -> None:
+    """Every channel, group by group."""
+    for group in _GROUPS:
+        for known in CHANNELS.values():
+            if known.group is group:
+                box.addItem(known.name, known.key)
+    box.setMaxVisibleItems(24)
 
 
 def _padded(box: QComboBox) -> QWidget:

@@ -42,9 +42,11 @@ class MappingDialog(FittedDialog):
     ready = Signal(object)
 
     def __init__(
-        self, model: SessionModel, path: Path, reader: Reader, theme: Theme, parent: QWidget | None = None
-    ) -> None:
+        self, model: SessionModel, path: Path, reader: Reader, theme: Theme, parent: QWidget | None = None,
+        given: ReadRequest | None = None,
+    ) -> None:  # fmt: skip
         super().__init__(parent)
+        self._given = given
         self._model, self._path, self._reader, self._theme = model, path, reader, theme
         self.looked: Looked | None = None
         self.mapping = Mapping()
@@ -153,6 +155,12 @@ class MappingDialog(FittedDialog):
             box.setVisible(matters)
             self._labels[box].setVisible(matters)
         known = looked.recognised
+        given = self._given
+        if given is not None and given.mapping is not None and given.mapping.header == looked.table.header:
+            self.kept.setCurrentIndex(max(0, self.kept.findData(given.mapping.name)))
+            self.answers.shift.setValue(given.clock_shift_s)
+            self._begin(given.mapping, given.episode)  # another part of what was answered a moment ago
+            return
         self.kept.setCurrentIndex(max(0, self.kept.findData(known.name if known is not None else "")))
         self._begin(known or looked.proposal.mapping)
 
@@ -161,12 +169,12 @@ class MappingDialog(FittedDialog):
             kept = self.looked.kept.get(str(self.kept.currentData() or ""))
             self._begin(kept or self.looked.proposal.mapping)
 
-    def _begin(self, mapping: Mapping) -> None:
+    def _begin(self, mapping: Mapping, episode: str = "") -> None:
         """Show a mapping: its columns, its answers, its preview."""
         self.mapping = replace(mapping, header=self.looked.table.header if self.looked is not None else ())
         self.name.setText(mapping.name)
         self._show_columns()
-        self._show_answers("")  # whose values they are is asked: the episode in hand may be another patient's
+        self._show_answers(episode)  # whose values they are is asked: the episode in hand may be another patient's
         self._judge()
 
     def _show_columns(self) -> None:

@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import Signal
-from PySide6.QtWidgets import QComboBox, QGridLayout, QLabel, QPushButton, QWidget
+from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
 
+from app.plain_label import plain_label
 from app.theme import Theme
 
 MOST = 8
@@ -42,7 +43,7 @@ class PatientRows(QWidget):
         self.setVisible(bool(identifiers))
 
     def _add(self, row: int, text: str, episodes: Sequence[str]) -> None:
-        label = QLabel(self.tr("Patient {identifier} is").format(identifier=text))
+        label = plain_label(self.tr("Patient {identifier} is").format(identifier=text))
         box, button = QComboBox(), QPushButton(self.tr("Confirm"))
         box.setEditable(True)
         box.setInsertPolicy(QComboBox.InsertPolicy.NoInsert)

@@ -74,7 +74,8 @@ def read(store: Store, who: str, now: Instant, request: Path | ReadRequest) -> O
         OSError: the file cannot be read.
     """
     wanted = ReadRequest(request) if isinstance(request, Path) else request
-    return Outcome(_read(store, now, wanted), store.head())
+    head = store.head()
+    return Outcome(replace(_read(store, now, wanted), head=head), head)
 
 
 def _read(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
@@ -120,13 +121,16 @@ def _read_table(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
 
 
 def _read_results(store: Store, now: Instant, wanted: ReadRequest, *, is_hl7: bool) -> Intake:
+    from storage.intake.kept_codes import kept_codes
     from storage.intake.mapping import kept_mapping
     from storage.intake.said import Said
 
     episodes = dict(wanted.patients) | ({"*": wanted.episode} if wanted.episode else {})
-    codes = kept_mapping(store, wanted.mapping_name).codes if wanted.mapping_name else {}
+    codes = kept_codes(store)
+    if wanted.mapping_name:
+        codes |= kept_mapping(store, wanted.mapping_name).codes
     if wanted.mapping is not None:
-        codes = wanted.mapping.codes
+        codes |= wanted.mapping.codes
     said = Said(wanted.zone, episodes, codes)
     if is_hl7:
         from storage.intake.hl7v2 import read_hl7
@@ -141,13 +145,14 @@ def take(store: Store, who: str, now: Instant, request: TakeRequest) -> Outcome[
     """Take a read file into the store.
 
     Raises:
-        RecordError: `intake.refused` when rows are refused; the store is untouched.
+        RecordError: `intake.refused` when rows are refused; `intake.overtaken` when something was recorded of its
+            episodes since it was read, so that it has to be read again. The store is untouched.
     """
     from storage.intake.batch import take_in
 
     intake = request.intake
     report(0, 0)
-    receipt = take_in(store, intake, by=who, now=now, without_refused=request.without_refused)
+    receipt = take_in(store, intake, by=who, now=now, without_refused=request.without_refused, progress=report)
     taken = Taken(
         intake.source.name,
         len(intake.entries),

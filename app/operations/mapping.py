@@ -88,6 +88,17 @@ def forget(store: Store, who: str, now: Instant, request: str) -> Outcome[str]:
     return Outcome(request, store.head())
 
 
+def keep_codes(store: Store, who: str, now: Instant, request: Map[str, str]) -> Outcome[dict[str, str]]:
+    """Keep what a person said of senders' own codes: a channel for each, or an empty text where it is not wanted.
+
+    Raises:
+        RecordError: `mapping.channel_unknown`.
+    """
+    from storage.intake.kept_codes import keep_codes as keep_all
+
+    return Outcome(keep_all(store, request), store.head())
+
+
 def listed(store: Store, who: str, now: Instant, request: None) -> Outcome[dict[str, Mapping]]:
     """The mappings that are kept, by name."""
     return Outcome(kept_mappings(store), store.head())

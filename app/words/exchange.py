@@ -6,6 +6,7 @@ RESULTS: Final[dict[str, str]] = {
     "code.ambiguous_saturation":
         "Code {code} does not say whether a pulse oximeter or an analyser measured the saturation: left aside.",
     "code.not_ours": "Code {code}[[ ({name})]] is no quantity of this log: it was left aside.",
+    "code.not_wanted": "Code {code}[[ ({name})]] is not wanted here, as somebody has said: it was left aside.",
     "fhir.members_elsewhere": "{count} member(s) of this panel are not in the file: they were left aside.",
     "fhir.modifier": "The observation carries marks that change its meaning. Accepted: {accepted}.",
     "fhir.no_resource": "This is no FHIR resource. Accepted: {accepted}.",

@@ -23,13 +23,20 @@ class CodeBook:
 
     codes: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))
 
-    def channel(self, codings: list[Coding]) -> str:
-        """The channel that a person gave one of the codes; empty where none was."""
-        for system, code in codings:
-            found = self.codes.get(f"{system}|{code}") or self.codes.get(code)
-            if found:
-                return found
-        return ""
+    def channel(self, codings: list[Coding]) -> str | None:
+        """The channel that a person gave one of the codes; empty where it is not wanted; None where nobody said."""
+        said = [self.codes.get(code_key(c), self.codes.get(c[1])) for c in codings]
+        return next((s for s in said if s), "" if "" in said else None)
+
+
+def code_key(coding: Coding) -> str:
+    """How a code is kept: with its system, where it has one.
+
+    >>> code_key(("L", "GLU")), code_key(("", "GLU"))
+    ('L|GLU', 'GLU')
+    """
+    system, code = coding
+    return f"{system}|{code}" if system else code
 
 
 def coded_reading(channel: Channel, text: str, unit_code: str, *, is_ucum: bool) -> Reading:

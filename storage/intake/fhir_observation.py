@@ -14,7 +14,7 @@ from core.record.instant import Instant, parse
 from core.record.message import Message, RecordError, refuse
 from core.record.reading import MAX_TEXT, Reading, read_value
 from storage.codes import LOCAL_SYSTEM, LOINC, UCUM, Coding, Meaning, meaning_of_codings
-from storage.intake.coded_value import CodeBook, coded_reading
+from storage.intake.coded_value import CodeBook, code_key, coded_reading
 from storage.intake.fhir_bundle import Found, Holdings
 from storage.intake.fhir_json import Json, child, objects, text
 from storage.intake.fhir_sampled import sampled_points
@@ -37,6 +37,8 @@ _ARTERIAL_SATURATION = (LOINC, "2708-6")
 
 class _Aside(Protocol):
     def put(self, line: int, column: str, value: str, message: Message) -> None: ...
+
+    def note_code(self, key: str, name: str, example: str, unit: str) -> None: ...
 
 
 @dataclass(frozen=True, slots=True)
@@ -103,13 +105,26 @@ class ObservationRows:
                 yield where, part, meaning
             elif meaning is None and (where or has_value or not has_parts):
                 self._aside.put(found.number, f"{where} code".strip(), _name(part), why)
+                if why.key == "code.not_ours":
+                    self._ask(part)
+
+    def _ask(self, part: Json) -> None:
+        """Note a code that nobody has said anything of, with what was sent under it."""
+        codings = [(text(c, "system"), text(c, "code")) for c in objects(child(part, "code"), "coding")]
+        quantity = child(part, "valueQuantity")
+        example = text(quantity, "value") or _name({"code": child(part, "valueCodeableConcept")})
+        unit = text(quantity, "code") or text(quantity, "unit")
+        key = next((code_key(c) for c in codings if c[1]), "")
+        self._aside.note_code(key, _name(part), example or text(part, "valueString"), unit)
 
     def _meaning(self, part: Json, resource: Json) -> tuple[Meaning | None, Message]:
         codings: list[Coding] = [(text(c, "system"), text(c, "code")) for c in objects(child(part, "code"), "coding")]
         code = codings[0][1] if codings else ""
         why = Message("code.not_ours", {"code": code[:60], "name": _name(part)[:80]})
         own = self._book.channel(codings)
-        if own in CHANNELS:
+        if own == "":
+            return None, Message("code.not_wanted", why.values)
+        if own is not None and own in CHANNELS:
             return Meaning(own), why
         meaning = meaning_of_codings(codings)
         if meaning is not None and meaning.channel == "sao2" and _ARTERIAL_SATURATION in codings:

@@ -38,6 +38,17 @@ class Doubt:
     message: Message
 
 
+@dataclass(slots=True)
+class UnknownCode:
+    """A code that is no quantity of the log until a person says which: key, name, an example with its unit."""
+
+    key: str
+    name: str
+    example: str
+    unit: str
+    count: int = 0
+
+
 @dataclass(frozen=True, slots=True)
 class Intake:
     """What a file would add. It is taken whole or not at all: only without refusals.
@@ -45,7 +56,8 @@ class Intake:
     `whole` is False where reading had to stop before the end of the file, so that nothing of it can be taken.
     `repeated_in_store` counts rows that the store already has; they are skipped.
     `aside` lists what is readable and not for this record, with the reason: codes that are no channel, results
-    that were cancelled. `aside_count` counts them all.
+    that were cancelled. `aside_count` counts them all. `unknown_codes` are those a person may give a channel.
+    `head` is the store's newest sequence when the file was read: what was recorded since was not looked at.
     """
 
     source: SourceFacts
@@ -59,6 +71,8 @@ class Intake:
     aside: tuple[Refusal, ...] = ()
     aside_count: int = 0
     unknown_patients: tuple[str, ...] = ()
+    unknown_codes: tuple[UnknownCode, ...] = ()
+    head: int | None = None
 
     @property
     def sample_count(self) -> int:

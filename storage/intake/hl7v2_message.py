@@ -14,7 +14,7 @@ from core.record.instant import Instant
 from core.record.message import Message, RecordError, refuse
 from core.record.reading import MAX_TEXT
 from storage.codes import LOINC, Coding, Meaning, meaning_of_codings
-from storage.intake.coded_value import CodeBook, coded_reading
+from storage.intake.coded_value import CodeBook, code_key, coded_reading
 from storage.intake.findings import CLOCK_LEAD, Findings
 from storage.intake.hl7v2_messages import RawMessage
 from storage.intake.patients import Patients, identifier_text
@@ -41,6 +41,8 @@ BY = "HL7"
 
 class _Aside(Protocol):
     def put(self, line: int, column: str, value: str, message: Message) -> None: ...
+
+    def note_code(self, key: str, name: str, example: str, unit: str) -> None: ...
 
 
 @dataclass(slots=True)
@@ -136,14 +138,27 @@ class MessageRows:
             self._meanings[text] = self._looked_up(message.codings(text))
         found = self._meanings[text]
         if found is None:
-            parts = text.split(message.component)
-            values = {"code": parts[0][:60], "name": message.plain(_get(parts, 1))[:80]}
-            self._aside.put(o.line, "OBX-3", text[:80], Message("code.not_ours", values))
+            self._put_aside(message, o, text)
         return found
 
     def _looked_up(self, codings: list[Coding]) -> Meaning | None:
         own = self._book.channel(codings)
-        return Meaning(own) if own in CHANNELS else meaning_of_codings(codings)
+        if own == "":
+            return None
+        return Meaning(own) if own is not None and own in CHANNELS else meaning_of_codings(codings)
+
+    def _put_aside(self, message: _Message, o: _Observed, text: str) -> None:
+        """A result whose code is no quantity of the log: named, and asked about where nobody has said anything."""
+        parts, codings = text.split(message.component), message.codings(text)
+        values = {"code": parts[0][:60], "name": message.plain(_get(parts, 1))[:80]}
+        if self._book.channel(codings) == "":
+            self._aside.put(o.line, "OBX-3", text[:80], Message("code.not_wanted", values))
+            return
+        self._aside.put(o.line, "OBX-3", text[:80], Message("code.not_ours", values))
+        example = message.plain(_get(o.fields, 5).replace(message.component, " ")).strip()
+        unit = message.plain(_get(o.fields, 6).split(message.component)[0])
+        key = code_key(codings[0]) if codings else ""
+        self._aside.note_code(key, message.plain(_get(parts, 1)) or parts[0], example, unit)
 
     def _moment(self, o: _Observed) -> Instant:
         text = (_get(o.fields, 14) or o.order.at_text).strip()

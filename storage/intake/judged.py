@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from itertools import islice
 
 from core.record.message import Message
@@ -22,11 +22,21 @@ _HOURS_AT_ONCE = 200
 def judged_intake(
     source: SourceFacts, rows: list[EntryRow], spool: SampleSpool, findings: Findings, existing: Store | None,
     *, whole: bool = True, repeated: int = 0, aside: Sequence[Refusal] = (), aside_count: int = 0,
+    progress: Callable[[int, int], None] | None = None,
 ) -> Intake:  # fmt: skip
-    """The intake of rows and samples that were read. `repeated` were known for held before they got here."""
+    """The intake of rows and samples that were read. `repeated` were known for held before they got here.
+
+    `progress` is told now and then that the file is read (all of it); what it raises stops the work.
+    """
+
+    def step() -> None:
+        if progress is not None:
+            progress(source.size, source.size)
+
+    step()
     judged = EntryRows(rows, spool.leak_uses, existing, findings)
     entries = judged.judged()
-    chunks, known = new_chunks(spool, source.id, existing)
+    chunks, known = new_chunks(spool, source.id, existing, step)
     for again in spool.repeated:
         message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
         findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
@@ -40,7 +50,9 @@ def judged_intake(
     )  # fmt: skip
 
 
-def new_chunks(spool: SampleSpool, source_id: str, existing: Store | None) -> tuple[FreshChunks, int]:
+def new_chunks(
+    spool: SampleSpool, source_id: str, existing: Store | None, step: Callable[[], None]
+) -> tuple[FreshChunks, int]:
     """The hours of samples that the store does not have just so, and how many samples it has."""
     fresh = FreshChunks(source_id)
     known = 0
@@ -48,6 +60,7 @@ def new_chunks(spool: SampleSpool, source_id: str, existing: Store | None) -> tu
         held = None if existing is None else HeldSamples(existing, *key)
         blocks = iter(spool.blocks(key))
         while some := tuple(islice(blocks, _HOURS_AT_ONCE)):
+            step()
             have = held.have(some) if held is not None else [False] * len(some)
             for block, is_held in zip(some, have, strict=True):
                 if is_held:

@@ -47,7 +47,7 @@ class _Reading:
     def __init__(
         self, path: Path, now: Instant, progress: Progress | None, cancelled: Callable[[], bool] | None
     ) -> None:
-        self._path, self._now = path, now
+        self._path, self._now, self._progress = path, now, progress
         self._reader = BlockReader(path, progress, cancelled)
         self._findings, self._spool = Findings(), SampleSpool()
         self._rows = RowReader(now, self._findings)
@@ -123,7 +123,8 @@ class _Reading:
             self._reader.size,
             {k: v for k, v in units.items() if v},
         )
-        return judged_intake(source, self._entries, self._spool, self._findings, existing, whole=whole)
+        return judged_intake(source, self._entries, self._spool, self._findings, existing, whole=whole,
+                             progress=self._progress)  # fmt: skip
 
 
 def _after_header(block: TextBlock | None) -> tuple[Columns, TextBlock | None]:

@@ -170,13 +170,15 @@ def from_text(text: str) -> Mapping:
     return found
 
 
-class _Layouts(Protocol):
+class Layouts(Protocol):
+    """Where mappings are kept: a store."""
+
     def layouts(self) -> Map[str, str]: ...
 
     def put_layout(self, name: str, text: str | None) -> None: ...
 
 
-def kept_mappings(store: _Layouts) -> dict[str, Mapping]:
+def kept_mappings(store: Layouts) -> dict[str, Mapping]:
     """The mappings kept in a store, by name; one that cannot be read any more is passed over."""
     found: dict[str, Mapping] = {}
     for name, text in store.layouts().items():
@@ -188,7 +190,7 @@ def kept_mappings(store: _Layouts) -> dict[str, Mapping]:
     return found
 
 
-def kept_mapping(store: _Layouts, name: str) -> Mapping:
+def kept_mapping(store: Layouts, name: str) -> Mapping:
     """The mapping of that name.
 
     Raises:
@@ -201,7 +203,7 @@ def kept_mapping(store: _Layouts, name: str) -> Mapping:
     return from_text(text)
 
 
-def keep_mapping(store: _Layouts, mapping: Mapping) -> None:
+def keep_mapping(store: Layouts, mapping: Mapping) -> None:
     """Keep a mapping by its name; one of the same name is replaced.
 
     Raises:
@@ -212,7 +214,7 @@ def keep_mapping(store: _Layouts, mapping: Mapping) -> None:
     store.put_layout(PREFIX + mapping.name, to_text(mapping))
 
 
-def forget_mapping(store: _Layouts, name: str) -> None:
+def forget_mapping(store: Layouts, name: str) -> None:
     """Forget a mapping."""
     store.put_layout(PREFIX + name, None)
 

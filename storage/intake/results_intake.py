@@ -51,4 +51,5 @@ class ResultsIntake:
             source, made, self.spool, self.findings, self._existing, whole=whole,
             repeated=self._versions.repeated, aside=self.aside.listed, aside_count=self.aside.count,
         )  # fmt: skip
-        return replace(intake, unknown_patients=tuple(self.patients.unknown))
+        codes = tuple(self.aside.codes.values())
+        return replace(intake, unknown_patients=tuple(self.patients.unknown), unknown_codes=codes)

@@ -50,7 +50,7 @@ def read_table(
         findings.doubt(1, "", opened.dialect.encoding, Message("table.encoding_assumed", values))
     source = SourceFacts("table", path.name, blocks.sha, blocks.size, _facts(opened, mapping, answers, spool))
     made = sorted([*rows.entries, *changes.rows()], key=lambda row: row.line)
-    return judged_intake(source, made, spool, findings, existing)
+    return judged_intake(source, made, spool, findings, existing, progress=progress)
 
 
 def unreadable_table(path: Path, error: UnreadableFileError) -> Intake:

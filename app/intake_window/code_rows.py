@@ -1,0 +1,102 @@
+"""Codes of a sender's own that are no quantity of the log yet: a person says which each is, once, and it is kept."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
+
+from app import formats
+from app.intake_window.column_table import NoWheel, fill_channels
+from app.plain_label import plain_label
+from app.theme import Theme
+
+if TYPE_CHECKING:
+    from storage.intake.findings import UnknownCode
+
+MOST = 6
+"""Codes asked for at a time; the next ones follow when these are answered."""
+_OPEN = "?"
+
+
+class CodeRows(QWidget):
+    """`said(answers)` when a person has said what codes are: channels by code, an empty text for one not wanted.
+
+    Nothing is chosen beforehand, and a code left at the question mark stays aside and is asked about again.
+    """
+
+    said = Signal(object)
+
+    def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._grid = QGridLayout(self)
+        self._grid.setContentsMargins(0, 0, 0, 0)
+        self._grid.setHorizontalSpacing(theme.px(12))
+        self._grid.setVerticalSpacing(theme.px(4))
+        self._grid.setColumnStretch(1, 1)
+        self._still = NoWheel(self)
+        self.boxes: dict[str, QComboBox] = {}
+        self.keep = QPushButton()
+        self.hide()
+
+    def show_unknown(self, codes: Sequence[UnknownCode]) -> None:
+        """Ask for codes; none hides the rows."""
+        while self._grid.count():
+            item = self._grid.takeAt(0)
+            widget = item.widget() if item is not None else None
+            if widget is not None:
+                widget.hide()
+                widget.deleteLater()
+        self.boxes = {}
+        self.setVisible(bool(codes))
+        if not codes:
+            return
+        shown = list(codes)[:MOST]
+        head = plain_label(self._head(len(codes) - len(shown)))
+        head.setProperty("role", "emphasis")
+        self._grid.addWidget(head, 0, 0, 1, 3)
+        for row, code in enumerate(shown, 1):
+            self._add(row, code)
+        self.keep = QPushButton(self.tr("Keep what is said and read again"))
+        self.keep.setProperty("role", "small")
+        self.keep.setEnabled(False)
+        self.keep.clicked.connect(self._tell)
+        self._grid.addWidget(self.keep, len(shown) + 1, 2)
+
+    def _head(self, more: int) -> str:
+        text = self.tr("Codes that this log does not know. What is each?")
+        return text + self.tr(" {count} more follow.").format(count=more) if more else text
+
+    def _add(self, row: int, code: UnknownCode) -> None:
+        name = plain_label(f"{code.name} ({code.key})" if code.name != code.key else code.key)
+        name.setWordWrap(True)
+        sent = formats.with_unit(code.example, code.unit)
+        text = self.tr("e.g. {value}, sent once") if code.count == 1 else self.tr("e.g. {value}, sent {count} times")
+        example = plain_label(text.format(value=sent or "-", count=code.count))
+        example.setProperty("role", "quiet")
+        box = QComboBox()
+        box.setAccessibleName(self.tr("What {code} is").format(code=code.name or code.key))
+        box.addItem(_OPEN, _OPEN)
+        box.addItem(self.tr("not wanted"), "")
+        fill_channels(box)
+        box.setMinimumContentsLength(20)
+        box.installEventFilter(self._still)
+        box.activated.connect(self._answered)
+        for column, widget in enumerate((name, example, box)):
+            self._grid.addWidget(widget, row, column)
+        self.boxes[code.key] = box
+
+    @property
+    def answers(self) -> dict[str, str]:
+        """What a person has said so far."""
+        found = {key: str(box.currentData()) for key, box in self.boxes.items()}
+        return {key: channel for key, channel in found.items() if channel != _OPEN}
+
+    def _answered(self) -> None:
+        self.keep.setEnabled(bool(self.answers))
+
+    def _tell(self) -> None:
+        if self.answers:
+            self.said.emit(self.answers)
