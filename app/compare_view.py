@@ -20,6 +20,7 @@ from PySide6.QtWidgets import (
 from app.compare.course_chart import CourseChart, pen_of
 from app.compare.courses import LEAST, MOST, compare, episode_name
 from app.operations.figures import EpisodeAnswer
+from app.plain_label import plain_label
 from app.theme import Theme
 from app.ward.lane_words import OnWard
 from app.ward.ordering import Order, ordered
@@ -43,7 +44,7 @@ class CompareView(QWidget):
         self._filling = False
         self.title = QLabel(self.tr("Compare, by hours since the start of support"))
         self.title.setProperty("role", "title")
-        self.said = QLabel()
+        self.said = plain_label()
         self.said.setProperty("role", "quiet")
         self.said.setWordWrap(True)
         self.list = QListWidget()

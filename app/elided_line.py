@@ -6,6 +6,8 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QFontMetrics, QResizeEvent
 from PySide6.QtWidgets import QLabel, QSizePolicy
 
+from app.formats import inert
+
 
 class ElidedLine(QLabel):
     """Use `say` and `whole` in place of `setText` and `text`."""
@@ -13,12 +15,13 @@ class ElidedLine(QLabel):
     def __init__(self) -> None:
         super().__init__()
         self._whole = ""
+        self.setTextFormat(Qt.TextFormat.PlainText)  # what is said holds labels and notes
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
 
     def say(self, text: str) -> None:
         """Say a text."""
         self._whole = text
-        self.setToolTip(text)
+        self.setToolTip(inert(text))
         self.setAccessibleName(text)
         self._fit()
 

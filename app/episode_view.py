@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from PySide6.QtCore import QPoint, Qt, Signal
 from PySide6.QtGui import QKeyEvent, QResizeEvent
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QPushButton, QScrollArea, QVBoxLayout, QWidget
 
 from app.chart.shapes import Bracket, Tick
 from app.chart.stack import PanelStack
@@ -18,6 +18,7 @@ from app.episode_shown import EpisodeOnScreen
 from app.explain import Explainer
 from app.headline import headline, state_now
 from app.phrases import translate
+from app.plain_label import plain_label
 from app.readers import reader_at
 from app.theme import Theme
 from app.ward.lane_words import indication_word
@@ -46,7 +47,7 @@ class EpisodeView(QWidget):
         self._on: EpisodeOnScreen | None = None
         self._now: Instant = 0
         self._is_tight = False
-        self.title = QLabel()
+        self.title = plain_label()
         self.title.setProperty("role", "title")
         self.standing = ElidedLine()
         self.standing.setProperty("role", "emphasis")
@@ -61,7 +62,7 @@ class EpisodeView(QWidget):
             button.setProperty("role", "small")
         self.readout = Readout(theme)
         self.stack = PanelStack(theme)
-        self.notice = QLabel()
+        self.notice = plain_label()
         self.notice.setProperty("role", "caption")
         self.side = SideColumn(theme)
         self._lay_out()

@@ -6,9 +6,10 @@ It stands under the menu for as long as the window is not live, so that nobody t
 from __future__ import annotations
 
 from PySide6.QtCore import Signal
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QLineEdit, QPushButton
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLineEdit, QPushButton
 
 from app.formats import wall
+from app.plain_label import plain_label
 from app.session import Session
 from app.theme import Theme
 
@@ -28,9 +29,9 @@ class KnownStrip(QFrame):
         super().__init__()
         self._theme = theme
         self.setProperty("banner", True)
-        self.said = QLabel()
+        self.said = plain_label()
         self.said.setProperty("role", "emphasis")
-        self.note = QLabel()
+        self.note = plain_label()
         self.note.setProperty("role", "quiet")
         minus, plus = "\N{MINUS SIGN}15 min", "+15 min"
         self.entry_back = self._button(self.tr("Recording before"), self.tr("The recording before"), "Alt+Shift+Left")

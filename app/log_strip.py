@@ -78,6 +78,7 @@ class LogStrip(QFrame):
         self._off_mask = False
         self._closed = ""
         self.whom = QLabel()
+        self.whom.setTextFormat(Qt.TextFormat.PlainText)
         self.whom.setProperty("role", "emphasis")
         self.line = LineField()
         self.line.setAccessibleName(self.tr("Log a line"))

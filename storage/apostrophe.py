@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-_FORMULA = ("=", "+", "-", "@", "\t", "\r", "\n")
+_FORMULA = ("=", "+", "-", "@", "\uff1d", "\uff0b", "\uff0d", "\uff20", "\t", "\r", "\n")
+"""The full-width signs too: a spreadsheet set to a language that writes them reads them as the others."""
 
 
 def guarded(text: str) -> str:

@@ -4,13 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 
-from PySide6.QtWidgets import QComboBox, QLabel, QLineEdit, QWidget
+from PySide6.QtWidgets import QComboBox, QLineEdit, QWidget
 
 from app.choice_row import ChoiceRow
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.finding_names import due_name
 from app.operations.due import DONE, NOT_NEEDED
+from app.plain_label import plain_label
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.judgement.shapes import DueFigure
@@ -32,7 +33,7 @@ class CloseDueDialog(AskingDialog):
         self.what = QComboBox()
         self.what.addItems([due_name(d.what, reader) for d in items])
         self.what.setCurrentIndex(self._items.index(chosen))
-        self.because = QLabel()
+        self.because = plain_label()
         self.because.setWordWrap(True)
         self.because.setProperty("role", "quiet")
         self.word = ChoiceRow("", ((DONE, self.tr("done")), (NOT_NEEDED, self.tr("not needed"))))

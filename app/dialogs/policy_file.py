@@ -11,6 +11,7 @@ from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QLabel, QTableWidg
 from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
+from app.plain_label import plain_label
 from app.policy_words import rules
 from app.theme import Theme
 from app.words import Reader, sentence
@@ -32,7 +33,7 @@ class PolicyFileDialog(AskingDialog):
         self.go.setText(self.tr("Put in force"))
         self._text, self._reader, self._put = text, reader, put
         self.found = check(text)
-        self.head = QLabel()
+        self.head = plain_label()
         self.head.setProperty("role", "emphasis")
         self.head.setWordWrap(True)
         self.body.addWidget(self.head)
