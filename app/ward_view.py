@@ -60,6 +60,7 @@ class WardView(QWidget):
         self._content: WardContent | None = None
         self._by_key: dict[str, OnWard] = {}
         self._later: dict[str, int] = {}
+        self._in_hand = ""
         self._order, self._shown = Order.CONCERN, Shown.ALL
         self.first = SeeFirst(theme)
         self.lanes = WardLanes(theme)
@@ -122,7 +123,7 @@ class WardView(QWidget):
         self.sort.chosen.connect(self._sort_chosen)
         self.filter.chosen.connect(self._filter_chosen)
         self.search.textChanged.connect(self._search_changed)
-        self.search.returnPressed.connect(self.lanes.setFocus)
+        self.search.returnPressed.connect(self._take_first)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
@@ -167,9 +168,14 @@ class WardView(QWidget):
         self._refresh()
 
     def select(self, key: str) -> None:
-        """Take an episode in hand, where its lane is shown."""
+        """Show which episode is in hand; no lane is, where it is not among those shown."""
+        self._in_hand = key
         if key in self.shown_keys():
-            self.lanes.select(key)
+            if self.lanes.selected_key != key:  # else the thing chosen on the lane stays chosen
+                self.lanes.select(key)
+        else:
+            self.lanes.select_none()
+            self.status.say(self._elsewhere())
 
     def shown_keys(self) -> tuple[str, ...]:
         """The episodes shown, from top to bottom."""
@@ -203,8 +209,25 @@ class WardView(QWidget):
                 self.tr("Ward: {count} episodes along the shift's clock").format(count=len(lanes)),
             )
         )
+        if self._in_hand:
+            self.select(self._in_hand)
         self.lanes.setAccessibleDescription("\n".join(x.sentence for x in lanes) or self._empty_word())
-        self.status.say(self.lanes.sentence_of_selection())
+        self.status.say(self.lanes.sentence_of_selection() or self._elsewhere())
+
+    def _elsewhere(self) -> str:
+        """That the episode in hand is not on the screen: whoever types must not think of another."""
+        held = self._by_key.get(self._in_hand)
+        if held is None or not self.shown_keys():
+            return ""
+        told = self.tr("{label} is in hand and not shown. Enter takes the first lane.")
+        return told.format(label=held.figures.label)
+
+    def _take_first(self) -> None:
+        """Enter in the search: the first that was found is taken in hand, unless one of the found is already."""
+        keys = self.shown_keys()
+        if keys and self._in_hand not in keys:
+            self.lanes.select(keys[0])
+        self.lanes.setFocus()
 
     def _former(self) -> dict[str, tuple[str, ...]]:
         """The beds and places that each episode was in before, to be found by."""
@@ -256,11 +279,12 @@ class WardView(QWidget):
     # what the person does
 
     def _selection_changed(self, key: str, item: LaneItem | None) -> None:  # noqa: ARG002
+        self._in_hand = key
         self.status.say(self.lanes.sentence_of_selection())
         self.selected.emit(key)
 
     def _hovered(self, words: str) -> None:
-        self.status.say(words or self.lanes.sentence_of_selection())
+        self.status.say(words or self.lanes.sentence_of_selection() or self._elsewhere())
 
     def _item_activated(self, key: str, item: object) -> None:  # noqa: ARG002
         self.opened.emit(key)

@@ -21,6 +21,8 @@ from app.chart.shapes import Lane, LaneItem, LanesSpec
 from app.chart.time_ticks import time_ticks
 from app.theme import GRID, Theme
 
+NO_LANE = -1
+
 
 class WardLanes(QAbstractScrollArea):
     """Draws a LanesSpec.
@@ -57,11 +59,12 @@ class WardLanes(QAbstractScrollArea):
         self._lay_out()
 
     def set_spec(self, spec: LanesSpec) -> None:
-        """Takes new lanes; what was chosen stays chosen where it is still there."""
+        """Takes new lanes; what was chosen stays chosen where it is still there. Where it is not, no lane is: another
+        must not look as if it were in hand."""
         key, item = self.selected_key, self._item
         self.spec = spec
         keys = [lane.key for lane in spec.lanes]
-        self._lane = keys.index(key) if key in keys else 0
+        self._lane = keys.index(key) if key in keys else NO_LANE if key else 0
         lane = self.selected_lane
         self._item = next((i for i in lane.items if i == item), None) if lane is not None else None
         self.setAccessibleName(spec.name)
@@ -71,7 +74,7 @@ class WardLanes(QAbstractScrollArea):
     def selected_lane(self) -> Lane | None:
         if self.spec is None or not self.spec.lanes:
             return None
-        return self.spec.lanes[self._lane]
+        return self.spec.lanes[self._lane] if self._lane != NO_LANE else None
 
     @property
     def selected_key(self) -> str:
@@ -89,6 +92,11 @@ class WardLanes(QAbstractScrollArea):
         if place is None:
             raise KeyError(f"no lane {key!r}")
         self._choose(place, item)
+
+    def select_none(self) -> None:
+        """No lane is chosen: the episode in hand is not among those shown."""
+        self._lane, self._item = NO_LANE, None
+        self.viewport().update()
 
     def sentence_of_selection(self) -> str:
         """What is chosen, in words."""
@@ -238,10 +246,16 @@ class WardLanes(QAbstractScrollArea):
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         keys, lane = Qt.Key, self.selected_lane
-        if lane is None or self.spec is None:
+        if self.spec is None or not self.spec.lanes:
             super().keyPressEvent(event)
             return
         last = len(self.spec.lanes) - 1
+        if lane is None:  # any of these keys takes one in hand again
+            if event.key() in (keys.Key_Up, keys.Key_Down, keys.Key_PageUp, keys.Key_PageDown, keys.Key_Return):
+                self._choose(0, None)
+            else:
+                event.ignore()
+            return
         match event.key():
             case keys.Key_Up:
                 self._choose(max(self._lane - 1, 0), None)

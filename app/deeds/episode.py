@@ -42,8 +42,8 @@ class EpisodeDeeds(Doer):
     def _step(self, by: int) -> None:
         keys = self.pages.ward.shown_keys()
         key = self.model.session.selection
-        if key in keys:
-            self.model.select(keys[(keys.index(key) + by) % len(keys)])
+        if keys:  # one that a filter hides has no neighbour: the first is next
+            self.model.select(keys[(keys.index(key) + by) % len(keys)] if key in keys else keys[0])
 
     def do_panels(self) -> None:
         """Add, name, fill, order and remove panels."""

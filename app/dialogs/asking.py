@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
+
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import (
@@ -46,6 +48,7 @@ class AskingDialog(FittedDialog):
         self._column.addLayout(self.body)
         self._column.addLayout(self.form)
         self._column.addStretch(1)
+        self._inside = inside
         self.roll = RollArea(inside)
         column = self._outer = QVBoxLayout(self)
         column.setContentsMargins(theme.px(20), theme.px(16), theme.px(20), theme.px(16))
@@ -68,7 +71,19 @@ class AskingDialog(FittedDialog):
     def showEvent(self, event: QShowEvent) -> None:
         """Tall enough for every wrapped line: a form that cuts its words says something else."""
         super().showEvent(event)
+        self._fields_first()
         self.grow()
+
+    def _fields_first(self) -> None:
+        """Tab goes through the fields, then to the buttons, and begins at the first field."""
+        inside = self._inside.findChildren(QWidget)
+        fields = [w for w in inside if w.focusPolicy() & Qt.FocusPolicy.TabFocus and w.isVisibleTo(self)]
+        if not fields:
+            return
+        for before, after in pairwise((fields[-1], *self.buttons.buttons())):
+            QWidget.setTabOrder(before, after)
+        if self.focusWidget() is None or self.focusWidget() in self.buttons.buttons():
+            fields[0].setFocus(Qt.FocusReason.TabFocusReason)
 
     def grow(self) -> None:
         """Become tall enough for what stands there now, as far as there is room."""

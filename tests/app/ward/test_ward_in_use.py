@@ -91,3 +91,42 @@ def test_closed_episodes_stay_dimmed_and_filters_leave_them_out(qtbot, window):
     assert "weaned" in lane(window, "bed-3").due_word
     window.actions_by_key["filter_not_responding"].trigger()
     assert "bed-3" not in window.pages.ward.shown_keys()
+
+
+def test_what_a_search_hides_is_not_taken_for_what_it_shows(qtbot, window):
+    ward = window.pages.ward
+    window.select("bed-7")
+    qtbot.keyClick(ward.lanes, Qt.Key.Key_F, Qt.KeyboardModifier.ControlModifier)
+    qtbot.keyClicks(ward.search, "bed 3")
+    assert ward.shown_keys() == ("bed-3",)
+    assert ward.lanes.selected_lane is None  # the patient in hand is another one
+    assert window.strip.whom.text() == "Bed 7"
+    assert "Bed 7 is in hand and not shown" in ward.status.text()
+    qtbot.keyClick(ward.search, Qt.Key.Key_Return)
+    settled(qtbot, window)
+    assert window.model.session.selection == "bed-3"
+    assert window.strip.whom.text() == "Bed 3"
+    assert ward.lanes.hasFocus()
+    ward.search.clear()
+    assert ward.lanes.selected_key == "bed-3"
+
+
+def test_what_a_filter_hides_leaves_no_lane_chosen_and_arrows_take_one(qtbot, window):
+    ward = window.pages.ward
+    window.select("bed-3")
+    window.actions_by_key["filter_not_responding"].trigger()
+    assert "bed-3" not in ward.shown_keys()
+    assert ward.lanes.selected_lane is None
+    qtbot.keyClick(ward.lanes, Qt.Key.Key_Down)
+    assert window.model.session.selection == ward.shown_keys()[0]
+    assert window.strip.patient == ward.shown_keys()[0]
+
+
+def test_a_thing_chosen_on_a_lane_stays_chosen_when_figures_come(qtbot, window):
+    lanes = window.pages.ward.lanes
+    qtbot.keyClick(lanes, Qt.Key.Key_End)
+    chosen = lanes.selected_item
+    assert chosen is not None
+    window.model._ticked()
+    settled(qtbot, window)
+    assert lanes.selected_item is not None
