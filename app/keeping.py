@@ -233,6 +233,11 @@ class Keeping(QObject):
             told = sentence(failure.message, self._window.reader)
             self.notices.tell(DAMAGED, told, lasting=True, ways=ways_out_of(failure.message.key))
 
+    def tell_unsound(self, findings: int) -> None:
+        """The check found something: that stands here, with the ways out, until the store is closed."""
+        told = self.tr("The check of this store found that it is not sound (findings: {count}).")
+        self.notices.tell(DAMAGED, told.format(count=findings), lasting=True, ways=ways_out_of("store.damaged"))
+
     def _take_way(self, key: str) -> None:
         if key == FORM_AGAIN:
             self._window.doers.log.open_lost()

@@ -35,6 +35,7 @@ class StoreDeeds(Doer):
 
     _changing: ChangePassphraseDialog | None = None
     code_dialog: RecoveryCodeDialog | None = None
+    _witness = ""
 
     # the lock
 
@@ -83,9 +84,12 @@ class StoreDeeds(Doer):
 
     def set_witness(self, path: Path) -> None:
         """Add the printed head to this file after each backup."""
+        from app.operations import backup
+
         self.window.prefer(witness_file=str(path))
         if self.window.keeping.backups is not None:
             self.window.keeping.backups.witness = str(path)
+        self.model.ask(backup.add_witness, str(path), failed=self.window.show_failure)
 
     def do_restore(self) -> None:
         """Ask for a backup, restore it."""
@@ -171,11 +175,14 @@ class StoreDeeds(Doer):
         from app.operations import store
 
         self.window.say(self.tr("Checking the store..."))
-        self.model.ask(store.verify, None, done=self._checked, subject="check store")
+        self._witness = self.window.preferences.witness_file
+        self.model.ask(store.verify, self._witness or None, done=self._checked, subject="check store")
 
     def _checked(self, outcome: Outcome[tuple[Message, ...]]) -> None:
         if not outcome.value:
-            self.window.say(self.tr("The store is sound: pages, chain, safeguards and rules."))
+            sound = self.tr("The store is sound: pages, chain, safeguards and rules.")
+            borne_out = self.tr("It holds every head of the witness file.") if self._witness else ""
+            self.window.say(f"{sound} {borne_out}".rstrip())
             return
         from app.dialogs.table import TableDialog
         from app.tables import Table
@@ -185,6 +192,7 @@ class StoreDeeds(Doer):
         rows = tuple((str(n), text) for n, text in enumerate(texts, start=1))
         told = self.tr("The store is not sound. Restore the newest backup, or save what can be read.")
         TableDialog(Table(self.tr("Findings"), heads, rows, told), self.window.theme, self.window).open()
+        self.window.keeping.tell_unsound(len(texts))
 
     def do_archive(self) -> None:
         """List the ended episodes; archive or remove them."""

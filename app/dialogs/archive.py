@@ -146,8 +146,9 @@ class ArchiveDialog(AskingDialog):
         gone = day(self._model.session.now() + YEAR, self._reader.zone)
         told = self.tr(
             "Remove {count} episodes for good? This cannot be undone. Closed handovers as old as the ward's "
-            "retention time go with them. Their digests stay in the ledger; the last "
-            "backup that holds them expires by {day}."
+            "retention time go with them. Their digests stay in the ledger.\n\nThe backups that the program takes "
+            "by itself and that hold them expire by {day}, while the store is in use. Archives, copies made by hand "
+            "and backups in a folder used before stay until somebody removes them."
         )
         asked = QMessageBox.question(self, self.windowTitle(), told.format(count=len(self.chosen()), day=gone))
         if asked is QMessageBox.StandardButton.Yes:

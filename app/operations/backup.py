@@ -113,6 +113,17 @@ def rotate(store: Store, who: str, now: Instant, request: Rotation) -> Outcome[R
     return Outcome(Rotated(found[newest] if newest is not None else None, newest, taken, notices), store.head())
 
 
+def add_witness(store: Store, who: str, now: Instant, request: str) -> Outcome[str]:
+    """Add the store's head to a witness file; the line.
+
+    Raises:
+        StoreError: `witness.unwritable`.
+    """
+    from storage import witness
+
+    return Outcome(witness.add(Path(request), store, now), store.head())
+
+
 def low_disk(store: Path, *folders: Path) -> tuple[Message, ...]:
     """What to say of disks that are nearly full: the store's own and those of other folders."""
     needed = max(LEAST_FREE, TIMES_STORE * store.stat().st_size)

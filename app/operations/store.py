@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.operations.figures import RECENTLY_ENDED
@@ -12,6 +13,7 @@ from core.judgement.policy import Policy
 from core.record.instant import Instant
 from core.record.message import Message
 from storage import people
+from storage.errors import StoreError
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -84,6 +86,17 @@ def takes_writing(store: Store, who: str, now: Instant, request: None) -> Outcom
     return Outcome(store.takes_writing(), store.head())
 
 
-def verify(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[Message, ...]]:
-    """Check the store whole: pages, chain, triggers, domain rules, derived tables. Empty when all is well."""
-    return Outcome(tuple(store.verify()), store.head())
+def verify(store: Store, who: str, now: Instant, request: str | None) -> Outcome[tuple[Message, ...]]:
+    """Check the store whole: pages, chain, triggers, domain rules, derived tables. Empty when all is well.
+
+    `request`: a witness file that the store's tail is held against too; one that cannot serve is a finding.
+    """
+    found = tuple(store.verify())
+    if request:
+        from storage import witness
+
+        try:
+            found += witness.findings(Path(request), store)
+        except StoreError as error:
+            found += (error.message,)
+    return Outcome(found, store.head())

@@ -10,6 +10,7 @@ from app.clock import still
 from app.dialogs.backups import BackupsDialog
 from app.dialogs.restore import RestoreDialog
 from app.dialogs.salvage import SalvageDialog
+from app.dialogs.table import TableDialog
 from app.operations import backup as operations
 from app.operations.backup import RestoreRequest, Rotation
 from app.preferences import Preferences
@@ -213,3 +214,25 @@ def test_a_witness_takes_the_head_after_each_backup(qtbot, path, tmp_path):
         settled(qtbot, window)
         with Store.open(path, read_only=True) as store:
             assert store.printed_head() in (tmp_path / "witness.txt").read_text()
+        window.actions_by_key["check_store"].trigger()
+        until(qtbot, lambda: "every head of the witness file" in window.strip.plain())
+
+
+def test_the_check_finds_that_the_newest_entries_were_cut_off(qtbot, path, tmp_path):
+    before = path.read_bytes()
+    with open_window(qtbot, path) as window:
+        window.doers.store.set_witness(tmp_path / "witness.txt")
+        log(qtbot, window, "rr 25")
+        window.keeping.backups.take_now()
+        settled(qtbot, window)
+    path.write_bytes(before)  # an old copy is put in the store's place
+    preferences = Preferences(cautions_seen=True, witness_file=str(tmp_path / "witness.txt"))
+    with open_window(qtbot, path, preferences=preferences) as window:
+        window.actions_by_key["check_store"].trigger()
+        until(qtbot, lambda: any("cut off or replaced" in t for t in _cells(window)))
+        assert "not sound" in window.keeping.notices.plain()
+        assert list(window.keeping.notices.ways) == ["restore", "salvage"]
+
+
+def _cells(window):
+    return [d.table.item(r, 1).text() for d in window.findChildren(TableDialog) for r in range(d.table.rowCount())]

@@ -7,6 +7,7 @@ import pytest
 from app.cli import main
 from core.record.entries import NewEntry
 from core.record.instant import HOUR
+from storage.keys import Cost, envelope_path
 from storage.store import Store
 from tests.support.open_window import NOW, make_store
 
@@ -29,11 +30,15 @@ def test_restore_says_what_the_old_store_holds_beyond_the_backup(ward, tmp_path,
     assert said(capsys, "--store", ward, "--by", "AB", "log", "bed-7", "rr 26", "--yes")[0] == 0
     code, out, err = said(capsys, "--store", new, "--by", "AB", "restore", copy, "--against", ward)
     assert code == 0, err
-    assert "  bed-7: " in out
+    assert "  bed-7: 1 logged" in out
+    assert "rr 26/min, AB" in out
     assert "bed-3" not in out
     new.unlink()
     code, out, _ = said(capsys, "--store", new, "--by", "AB", "--json", "restore", copy, "--against", ward)
-    assert [e["episode"] for e in json.loads(out)["newer_in_old"]["episodes"]] == ["bed-7"]
+    told = json.loads(out)
+    assert told["checked"]
+    assert [e["episode"] for e in told["newer_in_old"]["episodes"]] == ["bed-7"]
+    assert [(t["channel"], t["value"]) for t in told["newer_in_old"]["episodes"][0]["logged"]] == [("rr", "26")]
     assert said(capsys, "--store", new, "verify")[0] == 0
 
 
@@ -45,6 +50,20 @@ def test_a_store_that_cannot_be_compared_is_restored_all_the_same(ward, tmp_path
     assert code == 0
     assert "could not be compared" in out
     assert said(capsys, "--store", new, "verify")[0] == 0
+
+
+def test_without_the_passphrase_it_is_said_what_was_not_checked(tmp_path, capsys):
+    copy, new = tmp_path / "copy.luff", tmp_path / "new.luffmark"
+    with Store.create(
+        tmp_path / "ward.luffmark", now=NOW, passphrase="five boats at night", cost=Cost(64, 1, 1)
+    ) as w:
+        w.backup(copy)
+    code, out, err = said(capsys, "--store", new, "restore", copy)
+    assert code == 0, err
+    assert "were not checked" in out
+    new.unlink()
+    envelope_path(new).unlink()
+    assert json.loads(said(capsys, "--json", "--store", new, "restore", copy)[1])["checked"] is False
 
 
 def test_salvage_says_what_was_lost(ward, tmp_path, capsys):
