@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from functools import cached_property
 
 from core.judgement.anchors import Anchor
 from core.judgement.policy import Policy
@@ -56,12 +57,12 @@ class Context:
     scores: Mapping[str, ScoreFigure] = field(default_factory=dict)
     hacor_at_gases: Mapping[Instant, ScoreFigure] = field(default_factory=dict)
 
-    @property
+    @cached_property
     def indication(self) -> str | None:
         """Why support is given, as logged."""
         return self.episode.latest_text("indication")
 
-    @property
+    @cached_property
     def hypercapnic_risk(self) -> bool:
         """At risk of hypercapnia: by indication, by a target prescribed for it, or by a gas that shows it."""
         if self.indication in HYPERCAPNIC_RISK:
@@ -71,7 +72,7 @@ class Context:
             return True
         return any(g.hypercapnic and g.site != "venous" for g in self.gases)
 
-    @property
+    @cached_property
     def target(self) -> Target:
         """The prescribed SpO2 range, else the one its risk calls for."""
         low, high = self.episode.latest("target_spo2_low"), self.episode.latest("target_spo2_high")

@@ -34,15 +34,23 @@ def repeats(seen: Observed, flags: Iterable[FlagFigure]) -> list[Item]:
     if rule is None or not rule.on:
         return []
     urgent = [f for f in flags if f.tier == ESCALATE and not f.undone_by_correction]
-    gases = [g for g in seen.on_support_gases if g.ph is not None]
     items = []
-    for gas, later in zip(gases, [*gases[1:], None], strict=False):
-        asked = (_after_grave(seen, rule, gas, later), _after_flag(seen, rule, gas, later, urgent),
-                 _after_poor(seen, rule, gas, later))  # fmt: skip
+    for gas, later, after_grave, after_poor in seen.once(_asked_by_gases):
+        asked = after_grave, _after_flag(seen, rule, gas, later, urgent), after_poor
         wanted = [i for i in asked if i is not None]
         if wanted:
             items.append(min(wanted, key=lambda i: i.due_until))
     return items
+
+
+def _asked_by_gases(seen: Observed) -> list[tuple[GasFigure, GasFigure | None, Item | None, Item | None]]:
+    """Each gas on support, the one after it, and the repeats that it asks for by itself: if grave, if poor."""
+    rule = seen.policy.due["repeat_gas"]
+    gases = [g for g in seen.on_support_gases if g.ph is not None]
+    made = []
+    for gas, later in zip(gases, [*gases[1:], None], strict=False):
+        made.append((gas, later, _after_grave(seen, rule, gas, later), _after_poor(seen, rule, gas, later)))
+    return made
 
 
 def _item(

@@ -37,7 +37,8 @@ class Series:
 
     def cut(self, keep: slice | Flags) -> Series:
         """The part of the series that `keep` selects."""
-        return Series(self.t[keep], self.v[keep], self.spot[keep], self.doubt[keep], self.origin[keep])
+        kept = keep if isinstance(keep, slice) else np.flatnonzero(keep)  # five arrays are picked faster by place
+        return Series(self.t[kept], self.v[kept], self.spot[kept], self.doubt[kept], self.origin[kept])
 
     def until(self, at: Instant) -> Series:
         """What had happened by `at`, that moment included."""
