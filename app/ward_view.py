@@ -8,7 +8,7 @@ from zoneinfo import ZoneInfo
 
 from PySide6.QtCore import Signal
 from PySide6.QtGui import QResizeEvent
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QVBoxLayout, QWidget
 
 from app.chart.lanes import WardLanes
 from app.chart.shapes import Lane, LaneItem, LanesSpec
@@ -23,6 +23,7 @@ from app.ward.lane_words import LaneWords, OnWard, strongest_flag
 from app.ward.legend import Legend
 from app.ward.moves import told_apart
 from app.ward.ordering import Order, Shown, first_to_see, ordered, shown
+from app.ward.search_field import SearchField
 from app.ward.see_first import SeeFirst
 from app.words import sentence
 from core.record.instant import Instant
@@ -84,10 +85,7 @@ class WardView(QWidget):
         )
         self.shift = QLabel()
         self.shift.setProperty("role", "quiet")
-        self.search = QLineEdit()
-        self.search.setPlaceholderText(self.tr("Find a bed"))
-        self.search.setAccessibleName(self.tr("Find an episode by bed, place or indication"))
-        self.search.setClearButtonEnabled(True)
+        self.search = SearchField()
         self._legend: Legend | None = None
         self._lay_out()
         self._connect()
@@ -124,6 +122,7 @@ class WardView(QWidget):
         self.filter.chosen.connect(self._filter_chosen)
         self.search.textChanged.connect(self._search_changed)
         self.search.returnPressed.connect(self._take_first)
+        self.search.left.connect(self.lanes.setFocus)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
@@ -161,6 +160,11 @@ class WardView(QWidget):
         self.sort.choose(order)
         self._refresh()
 
+    def show_all(self) -> None:
+        """Every lane: no filter, no search."""
+        self.search.clear()
+        self.show_only(Shown.ALL)
+
     def show_only(self, which: Shown) -> None:
         """Filter the lanes."""
         self._shown = which
@@ -194,7 +198,7 @@ class WardView(QWidget):
             for f in ordered(shown(ward, self._shown, self.search.text(), self._former()), self._order)
         ]
         self._tell_first(words)
-        self._tell_shift(content)
+        self._tell_shift(content, len(lanes))
         self.lanes.set_spec(
             LanesSpec(
                 ZoneInfo(content.zone),
@@ -259,10 +263,18 @@ class WardView(QWidget):
         label = told_apart(top, self._content.as_of, self._content.zone) if shared else top.label
         self.first.show_first(top.episode, label, why, Tier(flag.tier) if flag is not None else None)
 
-    def _tell_shift(self, content: WardContent) -> None:
+    def _tell_shift(self, content: WardContent, shown_now: int) -> None:
+        """Which shift it is, and that not every episode is shown: what is hidden must not be forgotten."""
         kind = self.tr("Night shift") if content.shift.night else self.tr("Day shift")
         start, end = clock(content.shift.start, content.zone), clock(content.shift.end, content.zone)
-        self.shift.setText(self.tr("{kind} {start} to {end}").format(kind=kind, start=start, end=end))
+        told = self.tr("{kind} {start} to {end}").format(kind=kind, start=start, end=end)
+        hidden = shown_now < len(content.episodes)
+        if hidden:
+            told = self.tr("{count} of {all} shown").format(count=shown_now, all=len(content.episodes))
+        self.shift.setText(told)
+        self.shift.setProperty("role", "strong" if hidden else "quiet")
+        self.shift.style().unpolish(self.shift)
+        self.shift.style().polish(self.shift)
 
     def _empty_word(self) -> str:
         if self._content is not None and self._content.episodes:

@@ -43,8 +43,9 @@ class WardDeeds(Doer):
         self._sort(Order.DUE)
 
     def do_filter_all(self) -> None:
-        """Every episode."""
-        self._show(Shown.ALL)
+        """Every episode: no filter, no search."""
+        self.window.show_page("ward")
+        self.pages.ward.show_all()
 
     def do_filter_not_responding(self) -> None:
         """Only those with an open flag of concern or more."""

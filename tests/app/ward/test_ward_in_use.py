@@ -107,8 +107,16 @@ def test_what_a_search_hides_is_not_taken_for_what_it_shows(qtbot, window):
     assert window.model.session.selection == "bed-3"
     assert window.strip.whom.text() == "Bed 3"
     assert ward.lanes.hasFocus()
-    ward.search.clear()
+    assert ward.shift.text() == "1 of 2 shown"
+    window.actions_by_key["filter_all"].trigger()
+    assert ward.search.text() == ""
+    assert ward.shift.text() == "Night shift 19:30 to 07:30"
     assert ward.lanes.selected_key == "bed-3"
+    ward.search.setFocus()
+    qtbot.keyClicks(ward.search, "bed 7")
+    qtbot.keyClick(ward.search, Qt.Key.Key_Escape)
+    assert len(ward.shown_keys()) == 2
+    assert ward.lanes.hasFocus()
 
 
 def test_what_a_filter_hides_leaves_no_lane_chosen_and_arrows_take_one(qtbot, window):
