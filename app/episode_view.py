@@ -227,6 +227,7 @@ class EpisodeView(QWidget):
             self.stack.readings_at(at),
             pointed=instant is not None,
             events=[t.word for t in self.stack.events_at(at)] if instant is not None else (),
+            then=not self._on.live,
         )
 
     def go_to_anchor(self, step: int) -> None:

@@ -10,6 +10,9 @@ from app.handover.page_html import page_html
 from app.sheet.shapes import SheetContent
 from app.theme import Theme
 
+_TURNS = {Qt.Key.Key_N.value: 1, Qt.Key.Key_P.value: -1}
+"""Keys that turn to the next or previous episode while the page is read."""
+
 
 class HandoverView(QWidget):
     """Shows a SheetContent."""
@@ -63,7 +66,7 @@ class HandoverView(QWidget):
         bar = self.text.verticalScrollBar()
         place = bar.value() if self._content is not None else 0
         self._content = content
-        self.state.setText("")
+        self.state.setText(self.tr("N and P turn to the next and previous episode; Tab and Enter follow a bed"))
         self.text.setHtml(page_html(content, self._theme))
         bar.setValue(place)
 
@@ -79,7 +82,33 @@ class HandoverView(QWidget):
         if event.key() == Qt.Key.Key_Escape:
             self.back.emit()
             return
+        if event.key() in _TURNS and self._content is not None:
+            self.turn(_TURNS[event.key()])
+            return
         super().keyPressEvent(event)
+
+    def turn(self, step: int) -> None:
+        """To the next (1) or previous (-1) episode's heading, the ward's page before them all."""
+        if self._content is None:
+            return
+        tops = [0.0, *(self._top_of(page.label) for page in self._content.episodes)]
+        here, slack = self.text.verticalScrollBar().value(), self._theme.px(4)
+        later = [y for y in tops if y > here + slack] if step > 0 else [y for y in reversed(tops) if y < here - slack]
+        if later:
+            self.text.verticalScrollBar().setValue(int(later[0]))
+
+    def _top_of(self, anchor: str) -> float:
+        """Where an episode's heading stands in the page, in pixels from its top."""
+        document = self.text.document()
+        block = document.begin()
+        while block.isValid():
+            pieces = block.begin()
+            while not pieces.atEnd():
+                if anchor in pieces.fragment().charFormat().anchorNames():
+                    return document.documentLayout().blockBoundingRect(block).top()
+                pieces += 1
+            block = block.next()
+        return 0.0
 
     def _go(self, url: QUrl) -> None:
         self.text.scrollToAnchor(url.fragment())

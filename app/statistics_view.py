@@ -5,8 +5,8 @@ from __future__ import annotations
 from datetime import UTC, datetime
 from zoneinfo import ZoneInfo
 
-from PySide6.QtCore import QDateTime, QLocale, Qt, QTimeZone, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtCore import QDateTime, QLocale, Qt, QTimer, QTimeZone, Signal
+from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QDateTimeEdit,
@@ -74,7 +74,7 @@ class StatisticsView(QWidget):
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.table.verticalHeader().hide()
         self.table.setShowGrid(False)
-        self.table.setWordWrap(False)
+        self.table.setWordWrap(True)
         self.table.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
         self._measures: dict[int, Measure] = {}
@@ -152,7 +152,7 @@ class StatisticsView(QWidget):
         """The figures as a table and in words."""
         if self.found is None:
             return None
-        rows = tuple((m.group, m.name, m.shown, m.note) for m in measures(self.found, self._reader))
+        rows = tuple((m.group, m.name, m.shown, m.beside) for m in measures(self.found, self._reader))
         heads = (translate("statistics", "Group"), translate("statistics", "Figure"),
                  translate("statistics", "Value"), translate("statistics", "Beside it"))  # fmt: skip
         return Table(translate("statistics", "Shift figures"), heads, rows, as_text(self.found, self._reader))
@@ -176,7 +176,7 @@ class StatisticsView(QWidget):
                 heads.add(len(rows))
                 rows.append((group, "", ""))
             self._measures[len(rows)] = m
-            rows.append((m.name, m.shown, m.note or m.source))
+            rows.append((m.name, m.shown, m.beside))
         self.table.clearSpans()
         self.table.setRowCount(len(rows))
         for r, row in enumerate(rows):
@@ -191,10 +191,29 @@ class StatisticsView(QWidget):
             if r in heads:
                 self.table.setSpan(r, 0, 1, 3)
         header = self.table.horizontalHeader()
-        header.setSectionResizeMode(0, QHeaderView.ResizeMode.ResizeToContents)
         header.setSectionResizeMode(1, QHeaderView.ResizeMode.ResizeToContents)
         header.setSectionResizeMode(2, QHeaderView.ResizeMode.Stretch)
-        self.table.verticalHeader().setDefaultSectionSize(self._theme.px(26))
+        self._fit_rows()
+
+    def _fit_rows(self) -> None:
+        """Columns by the width there is, rows as high as their words: nothing in the table is cut."""
+        header, wide, px = self.table.horizontalHeader(), self.table.viewport().width(), self._theme.px
+        header.setSectionResizeMode(0, QHeaderView.ResizeMode.Fixed)
+        header.resizeSection(0, min(self.table.sizeHintForColumn(0) + px(12), round(wide * 0.42)))
+        metrics = self.table.fontMetrics()
+        for r in range(self.table.rowCount()):
+            high = 0
+            for c in range(self.table.columnCount()):
+                item, room = self.table.item(r, c), header.sectionSize(c) - px(16)
+                if item is not None and item.text():
+                    rect = metrics.boundingRect(0, 0, room, 100_000, Qt.TextFlag.TextWordWrap, item.text())
+                    high = max(high, rect.height())
+            self.table.setRowHeight(r, max(high + px(9), px(26)))
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        if self.found is not None:
+            QTimer.singleShot(0, self._fit_rows)
 
     # what the person does
 

@@ -66,11 +66,12 @@ class Readout(QFrame):
 
     def show_moment(
         self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool,
-        events: Iterable[str] = (),
+        events: Iterable[str] = (), then: bool = False,
     ) -> None:  # fmt: skip
-        """Say what stood at a moment; `pointed`: the crosshair is there, else it is now. `events`, which the chart
-        itself writes at the crosshair, are for screen readers."""
-        head = wall(at, zone) if pointed else self.tr("Now, {time}").format(time=wall(at, zone))
+        """Say what stood at a moment; `pointed`: the crosshair is there, else it is now, or with `then` the moment
+        that is looked back to. `events`, which the chart writes at the crosshair, are for screen readers."""
+        newest = self.tr("Then, {time}") if then else self.tr("Now, {time}")
+        head = wall(at, zone) if pointed else newest.format(time=wall(at, zone))
         settings = settings_line(stretch.settings) if stretch is not None else self.tr("no settings in force")
         age = ""
         if stretch is not None:

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QPainter, QPaintEvent
+from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
 from app.chart.marks import draw_card, fitted, pennant, solid_pen, verdict_sign
@@ -119,7 +120,8 @@ class StatisticsBars(QWidget):
         if not bars:
             painter.drawText(QRectF(px(14), top, width, row), _LEFT, translate("statistics", "none in this span"))
         most = max((b.value for b in bars), default=1)
-        name_at, bar_at, end = px(38), px(38) + width * 0.42, width - px(90)
+        name_at, end = px(38), width - px(90)
+        bar_at = self._after_names((b.name for b in bars), name_at, width)
         for n, bar in enumerate(bars):
             at = top + n * row
             self._draw_sign(painter, bar, QRectF(px(14), at + px(4), px(16), px(16)))
@@ -133,6 +135,12 @@ class StatisticsBars(QWidget):
             painter.setFont(theme.font(theme.type.caption))
             painter.drawText(room, _LEFT, bar.beside)
         return top + row * max(len(bars), 1) + px(10)
+
+    def _after_names(self, names: Iterable[str], left: float, width: float) -> float:
+        """Where what stands beside names begins: after the longest, that no name is cut where there is room."""
+        metrics = QFontMetricsF(self._theme.font(self._theme.type.body))
+        longest = max((metrics.horizontalAdvance(name) for name in names), default=0.0)
+        return min(left + longest + self._theme.px(12), width * 0.7)
 
     def _draw_sign(self, painter: QPainter, bar: Bar, box: QRectF) -> None:
         if bar.verdict is not None:
@@ -162,13 +170,16 @@ class StatisticsBars(QWidget):
         title = translate("statistics", "Time to start, and to the first gas")
         top = self._card(painter, title, note, y, width, row * 4)
         longest = max([m for _, w in rows for m in w.minutes] + [130.0])
+        bar_at = self._after_names((name for name, _ in rows), px(14), width)
         for n, (name, waits) in enumerate(rows):
-            self._draw_wait(painter, name, waits, longest, QRectF(0, top + n * row, width, row))
+            self._draw_wait(painter, name, waits, (bar_at, longest), QRectF(0, top + n * row, width, row))
         return top + row * 4 + px(10)
 
-    def _draw_wait(self, painter: QPainter, name: str, waits: Waits, longest: float, box: QRectF) -> None:
+    def _draw_wait(self, painter: QPainter, name: str, waits: Waits, scale: tuple[float, float], box: QRectF) -> None:
+        """`scale`: where the line begins, and how many minutes its end stands for."""
+        bar_at, longest = scale
         theme, px, c = self._theme, self._theme.px, self._theme.colours
-        bar_at, end, middle = px(14) + box.width() * 0.48, box.width() - px(64), box.top() + box.height() * 0.45
+        end, middle = box.width() - px(64), box.top() + box.height() * 0.45
         painter.setFont(theme.font(theme.type.body))
         painter.setPen(QColor(c.ink))
         name = fitted(painter, name, bar_at - px(22))

@@ -37,6 +37,11 @@ class Measure:
     """Where a limit comes from, and how sure it is."""
 
     @property
+    def beside(self) -> str:
+        """What is said beside it: the note, then the source."""
+        return ". ".join(x for x in (self.note, self.source) if x)
+
+    @property
     def shown(self) -> str:
         """The value as people read it: `3 of 5 (60 %)`, `45 min`, `31.5 h`."""
         if self.value is None:

@@ -63,6 +63,7 @@ def test_nothing_of_a_patient_is_among_them():
         "theme",
         "text_scale",
         "gas_unit",
+        "paper",
         "shift_starts",
         "cautions_seen",
         "recent_stores",
