@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from html import escape
 
 from app.phrases import translate
+from app.sheet.gas_table import HEADINGS
 from app.sheet.shapes import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
 from app.theme import Theme, Tier, Verdict, tier_word
 
@@ -15,7 +16,7 @@ def page_html(content: SheetContent, theme: Theme) -> str:
     writer = _Writer(theme)
     parts = [*writer.ward(content)]
     for page in content.episodes:
-        parts += writer.episode(page)
+        parts += writer.episode(page, content.gas_unit)
     parts.append(writer.quiet(f"{content.printed}. {content.head}."))
     parts.append(writer.quiet(content.caution))
     return "".join(parts)
@@ -65,7 +66,8 @@ class _Writer:
     def ward_row(self, r: WardRow) -> tuple[str, ...]:
         quiet = f'<span style="color:{self.c.ink_quiet}">'
         link = f'<a href="#{escape(r.label)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a>'
-        who = f"{link}<br>{quiet}{escape(r.who)}</span>"
+        limits = f"<b>{escape(r.limits)}</b>" if r.is_limited else escape(r.limits)
+        who = f"{link}<br>{quiet}{escape(r.who)}</span><br>{limits}"
         change = f"<br>{escape(r.change_of_state)}" if r.change_of_state else ""
         told = [escape(f) for f in r.flags] + ([f"{quiet}{escape(r.remarks)}</span>"] if r.remarks else [])
         told += [f"<b>{escape(r.action)}</b>"] if r.action else []
@@ -91,7 +93,7 @@ class _Writer:
         body = "".join("<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows)
         return f'<table width="98%" cellspacing="0" style="border-collapse:collapse"><tr>{head}</tr>{body}</table>'
 
-    def episode(self, page: EpisodePage) -> Iterator[str]:
+    def episode(self, page: EpisodePage, unit: str) -> Iterator[str]:
         yield f'<hr style="background:{self.c.line}">'
         yield self.heading(page.label, self.theme.type.title, page.label)
         yield self.quiet(page.subtitle)
@@ -106,6 +108,7 @@ class _Writer:
             yield from (self.flag(f) for f in page.flags)
         yield self.heading(translate("handover", "Changes this shift"), self.theme.type.emphasis)
         yield from self.changes(page.changes)
+        yield from self.gases(page, unit)
         yield self.heading(translate("handover", "Due next"), self.theme.type.emphasis)
         yield from (self.text(d) for d in page.due or (translate("handover", "Nothing due within 4 h."),))
         yield self.heading(
@@ -124,6 +127,21 @@ class _Writer:
         )
         yield from (self.quiet(line) for line in page.to_check)
 
+    def gases(self, page: EpisodePage, unit: str) -> Iterator[str]:
+        """The gases with their differences."""
+        title = translate("handover", "Gases (pressures in {unit}, HCO3 in mmol/L)").format(unit=unit)
+        yield self.heading(title, self.theme.type.emphasis)
+        if not page.gases:
+            yield self.text(translate("handover", "No gas recorded this shift or before it."))
+            return
+        rows = (
+            (g.at, g.site, g.ph, g.delta_ph, g.paco2, g.delta_paco2, g.pao2, g.hco3, g.pf, g.fio2,
+             g.state + (translate("handover", " (before)") if g.is_before else ""), g.verdict)
+            for g in page.gases
+        )  # fmt: skip
+        widths = (10, 5, 6, 6, 6, 6, 6, 6, 6, 7, 16, 20)
+        yield self.table(HEADINGS, ([escape(cell) for cell in row] for row in rows), widths)
+
     def flag(self, f: FlagLine) -> str:
         word = tier_word(Tier(f.tier)).upper()
         weight = 600 if f.is_open else 400
@@ -140,6 +158,6 @@ class _Writer:
         heads = (
             translate("handover", "When"),
             translate("handover", "What"),
-            translate("handover", "What it did"),
+            translate("handover", "What followed"),
         )
         yield self.table(heads, ((escape(x.at), escape(x.what), escape(x.response)) for x in lines), (15, 25, 60))
