@@ -70,12 +70,8 @@ def test_what_comes_back_from_a_file_is_what_was_exported(make_store: Callable[.
     assert not [c for c in cells if c.startswith(("=", "+", "-", "@", "\t", "\r", "\uff1d", "\uff0b"))]
     intake = read_log_csv(tmp_path / "out.csv", now=NOW)
     assert not intake.refusals
-    back = {d.draft.entry.episode: d.draft.entry for d in _rows(intake)}
+    back = {d.entry.episode: d.entry for d in intake.entries}
     assert [back[f"E{n}"].words for n in range(len(kept))] == [e.strip() for e in kept]
-
-
-def _rows(intake: object) -> list[object]:
-    return list(intake.entries)  # type: ignore[attr-defined]
 
 
 @pytest.mark.parametrize("evil", [*PATHS, *SQL])
