@@ -9,12 +9,13 @@ from typing import Final
 
 CAUTIONS: Final = (
     "Supports and never replaces clinical judgement: a qualified person decides.",
-    "It is no alarm and no monitor: it knows only what was logged, and nothing before it was logged.",
-    "Local policy and licensed practice come first. Thresholds marked * or 'from memory' or 'common practice' are to "
-    "be confirmed locally before anyone relies on them.",
-    "A ward settles its regulatory position before it relies on flags.",
+    "It is no alarm and no monitor: it knows only what was logged.",
+    "Local policy and licensed practice come first. Thresholds marked *, 'from memory' or 'common practice' are to be "
+    "confirmed locally.",
 )
 CAUTION: Final = " ".join(CAUTIONS)
 """All of them in one paragraph."""
+REGULATION: Final = "A ward settles its regulatory position before it relies on flags."
+"""Beside them at first start and in About, for who decides to use it."""
 IN_SIGHT: Final = "No alarm, no monitor: it knows only what was logged."
 """What never leaves the window."""

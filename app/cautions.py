@@ -4,14 +4,14 @@ from __future__ import annotations
 
 from PySide6.QtCore import QCoreApplication
 
-from app.caution_texts import CAUTIONS, IN_SIGHT
+from app.caution_texts import CAUTIONS, IN_SIGHT, REGULATION
 
 translate = QCoreApplication.translate
 
 
 def cautions() -> tuple[str, ...]:
-    """The cautions, one sentence or two each."""
-    return tuple(translate("cautions", text) for text in CAUTIONS)
+    """The cautions, one sentence or two each, and what a ward settles before it uses this."""
+    return tuple(translate("cautions", text) for text in (*CAUTIONS, REGULATION))
 
 
 def caution_in_sight() -> str:

@@ -9,6 +9,7 @@ from PySide6.QtGui import QEnterEvent, QFocusEvent, QKeyEvent, QMouseEvent, QRes
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
 
 from app.explain import Explanation
+from app.formats import unbroken
 from app.signs import Sign
 from app.theme import Theme
 
@@ -197,8 +198,8 @@ def _label(text: str, role: str) -> QLabel:
 
 
 def _unbroken(text: str) -> str:
-    """No line ends inside a unit: 30 L/min stays whole."""
-    return text.replace("/min", "/\N{WORD JOINER}min").replace(" L/", "\N{NO-BREAK SPACE}L/\N{WORD JOINER}")
+    """No line ends inside a value or a unit: 30 L/min stays whole."""
+    return unbroken(text).replace("/min", "/\N{WORD JOINER}min")
 
 
 def heading(text: str) -> QLabel:

@@ -6,6 +6,7 @@ plain text: where Qt could take it for rich text, pass it through `inert`.
 
 from __future__ import annotations
 
+import re
 from decimal import ROUND_HALF_UP, Decimal
 from html import escape
 from math import isnan
@@ -21,7 +22,7 @@ ABSENT = "not recorded"
 MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
 """Fixed letters, so that no computer's region turns a day into a month."""
 GAS_UNITS = ("mmHg", "kPa")
-_CHOICES = {"copd": "COPD", "ards": "ARDS", "confusion": "new confusion"}
+_CHOICES = {"copd": "COPD", "ards": "ARDS", "confusion": "new confusion", "full": "full treatment"}
 _GAS_DECIMALS = {"mmHg": 0, "kPa": 1}
 
 
@@ -119,8 +120,12 @@ def since(at: Instant, now: Instant) -> str:
 
 
 def hours(count: float) -> str:
-    """Hours with one decimal, e.g. 6.5 h."""
-    return f"{fixed(count, 1)} h"
+    """A length of time given in hours, as it is said: 3 h 54 min.
+
+    >>> hours(3.9), hours(0.25), hours(48.0)
+    ('3 h 54 min', '15 min', '48 h')
+    """
+    return minutes(count * 60.0)
 
 
 def gas_pressure(mmhg: float, unit: str = "mmHg", *, sign: bool = False) -> str:
@@ -216,6 +221,30 @@ def inert(text: str) -> str:
     '<span>&lt;b&gt;note&lt;/b&gt;</span>'
     """
     return f"<span>{escape(text, quote=False)}</span>".replace("\n", "<br>")
+
+
+def zone_name(zone: str) -> str:
+    """A zone by its IANA name; the many names of UTC are one.
+
+    >>> zone_name("Etc/UTC"), zone_name("Europe/London")
+    ('UTC', 'Europe/London')
+    """
+    return "UTC" if zone in ("Etc/UTC", "Etc/UCT", "Etc/Universal", "Etc/Zulu", "UTC", "UCT", "Zulu") else zone
+
+
+_UNITS = (
+    "cmH2O|mmHg|kPa|L/min|mmol/L|mL/kg|mL|min|kg|cm|h|s|y|g/L|\N{DEGREE SIGN}C|%"
+)
+_VALUE = re.compile(rf"(?<=\d) (?=(?:{_UNITS})(?![\w/]))|(?<=\d h) (?=\d\d min\b)|(?<=\bpH) (?=\d)")
+
+
+def unbroken(text: str) -> str:
+    """A text whose lines end between values, never between a number and its unit.
+
+    >>> unbroken("PaCO2 77 mmHg after 1 h 12 min, 5 more").replace(NO_BREAK, "_")
+    'PaCO2 77_mmHg after 1_h_12_min, 5 more'
+    """
+    return _VALUE.sub(NO_BREAK, text)
 
 
 def plain(text: str) -> str:

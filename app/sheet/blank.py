@@ -87,7 +87,7 @@ def ward_blocks() -> list[Block]:
 def episode_blocks() -> list[Block]:
     """One episode's page."""
     shares = (8, 6, 8, 7, 9, 7, 8, 8, 7, 8, 14, 26)
-    changes = (("Time", 8), ("Change: IPAP, EPAP, FiO2, rate, mode, interface", 46), ("What it did", 46))
+    changes = (("Time", 8), ("Change: IPAP, EPAP, FiO2, rate, mode, interface", 46), ("What followed", 46))
     observed = ("Time", "RR", "HR", "SpO2", "BP", "GCS / ACVPU", "Temp", "Leak", "VTe")
     flags = (("Since", 8), ("What was met, with its values", 56), ("Seen or settled by", 36))
     return [

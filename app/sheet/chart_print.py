@@ -161,8 +161,8 @@ class _Plot:
         p.line(self.left, top + high, self.left + self.width, top + high, 0.3, LINE)
         decimals = 2 if strip.name == "pH" else 0
         right = self.left + self.width + 5
-        p.text(right, ground - 4, _RIGHT - 5, formats.trimmed(most, decimals), SCALE)
-        p.text(right, top + high - 7, _RIGHT - 5, formats.trimmed(low, decimals), SCALE)
+        p.text(right, ground - 4, _RIGHT - 5, formats.fixed(most, decimals), SCALE)
+        p.text(right, top + high - 7, _RIGHT - 5, formats.fixed(low, decimals), SCALE)
         for part in joined(strip.line):
             p.path([(self.x(int(t)), y(float(v))) for t, v in zip(part.t, part.v, strict=True)], 0.55, GREY)
         self._dots(strip, y, top)

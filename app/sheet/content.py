@@ -9,6 +9,7 @@ from __future__ import annotations
 from dataclasses import replace
 
 from app import formats
+from app.formats import zone_name
 from app.operations.handover import Handover
 from app.sheet.episode_content import EpisodeWriter
 from app.sheet.shapes import SheetContent
@@ -24,7 +25,7 @@ def sheet_content(
     shift = handover.shift
     reader = replace(reader, near=(shift.start - 2 * HOUR, handover.end + 10 * HOUR))
     prepared = formats.wall(handover.prepared_at, reader.zone)
-    printed = f"Printed {prepared} ({reader.zone})"
+    printed = f"Printed {prepared} ({zone_name(reader.zone)})"
     if handover.as_known_at is not None:
         printed += f"; as known at {formats.wall(handover.as_known_at, reader.zone)}"
     writer = EpisodeWriter(handover, reader)

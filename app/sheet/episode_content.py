@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app import formats
+from app.certainty import starred
 from app.finding_names import lever_name, marker_name
 from app.later_words import later_sentence
 from app.sheet.chart_data import shift_chart
@@ -37,7 +38,8 @@ class EpisodeWriter(SheetWriter):
             shift_chart(record, f, (s.start, self._chart_end(s)), s.target, self._reader), gas_rows(s, lines),
             tuple(self._flag(x) for x in (*shown, *dict.fromkeys(other))),
             tuple(self._lines.due(d) for d in s.due), tuple(self._care(s)),
-            tuple(f"{self._moment(t.at)} {t.words or 'somebody'}" for t in s.told), tuple(self._plan(f)),
+            tuple(f"{self._moment(t.at)} {formats.told_words(t.words or 'somebody')}" for t in s.told),
+            tuple(self._plan(f)),
             str(f.profile.get("handover_remark") or ""), tuple(self._to_check(s)), tuple(self._levers(f)),
             since_head(self._h.handed, self._reader), since_lines(self._h.since[s.episode], lines),
         )  # fmt: skip
@@ -72,7 +74,7 @@ class EpisodeWriter(SheetWriter):
         p = s.now.profile
         yield "Why on support", formats.quantity("indication", p.get("indication"))
         yield "SpO2 target", self._target(s)
-        yield "Ceiling of care", str(p.get("ceiling_of_care") or formats.ABSENT)
+        yield "Ceiling of care", formats.quantity("ceiling_of_care", p.get("ceiling_of_care") or formats.ABSENT)
         yield "Resuscitation", str(p.get("resuscitation") or formats.ABSENT)
         yield "Responsible", str(p.get("contact") or formats.ABSENT)
         usual = p.get("usual_paco2")
@@ -135,7 +137,8 @@ class EpisodeWriter(SheetWriter):
     def _flag(self, x: FlagFigure) -> FlagLine:
         return FlagLine(x.tier, self._lines.flag_head(x), self._lines.evidence(x), self._lines.certainty(x),
                         x.state in ("raised", "seen"), x.strongest,
-                        f"{marker_name(x.marker, self._reader)} ({x.tier})", self._spell(x))  # fmt: skip
+                        f"{starred(marker_name(x.marker, self._reader), x.sure)} ({x.tier})", self._spell(x),
+                        x.settled_at is not None)  # fmt: skip
 
     def _spell(self, x: FlagFigure) -> str:
         since = self._moment(x.since)

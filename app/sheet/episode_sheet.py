@@ -35,7 +35,7 @@ def _changes(page: EpisodePage) -> Iterator[Block]:
     if short:
         yield Text(f"Earlier, by verdict alone: {'; '.join(c.brief for c in short)}.")
     if whole:
-        columns = (Column("When", 12), Column("What", 46), Column("What it did", 54))
+        columns = (Column("When", 12), Column("What", 46), Column("What followed", 54))
         yield Table(columns, [(c.at, c.what, c.response) for c in whole])
     if not page.changes:
         yield Text("No change of settings recorded this shift.")
@@ -97,7 +97,10 @@ def flag_blocks(flags: tuple[FlagLine, ...], *, weaker: bool, evidence_of: froze
         yield Text(f"Evidence and sources of the flags of {' and '.join(hidden)}: {_RECORD}.", SMALL)
     closed = [f for f in flags if not f.is_open]
     if closed:
-        yield Text(f"Settled or no longer met: {'; '.join(_closed(closed))}.")
+        for head, found in (("Settled", True), ("No longer met", False)):
+            told = [f for f in closed if f.is_settled is found]
+            if told:
+                yield Text(f"{head}: {'; '.join(_closed(told))}.")
     if not flags:
         yield Text("No flag was open or raised this shift.")
 

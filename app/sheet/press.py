@@ -9,6 +9,8 @@ from functools import lru_cache
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QBrush, QColor, QFont, QFontDatabase, QFontMetricsF, QPainter, QPen, QPolygonF
 
+from app.formats import unbroken
+
 POINTS_PER_INCH = 72
 INK, GREY, PALE, LINE = "#000000", "#444444", "#e9e9e9", "#8a8a8a"
 _TALL = 1e6
@@ -50,6 +52,7 @@ class Press:
     scale: float = 1.0
     _metrics: dict[Style, QFontMetricsF] = field(default_factory=dict)
     _heights: dict[tuple[str, Style, float, Align], float] = field(default_factory=dict)
+    _widths: dict[tuple[str, Style], float] = field(default_factory=dict)
     _scaled: dict[float, Press] = field(default_factory=dict)
 
     @property
@@ -73,7 +76,7 @@ class Press:
         """How high a text is when set in a width."""
         key = (text, style, width, align)
         if key not in self._heights:
-            self._heights[key] = self._measured(text, style, width, align)
+            self._heights[key] = self._measured(unbroken(text), style, width, align)
         return self._heights[key]
 
     def _measured(self, text: str, style: Style, width: float, align: Align) -> float:
@@ -83,13 +86,17 @@ class Press:
 
     def width(self, text: str, style: Style) -> float:
         """How wide a text is on one line."""
-        return self._metric(style).horizontalAdvance(text) / self.unit
+        found = self._widths.get((text, style))
+        if found is None:
+            found = self._widths[text, style] = self._metric(style).horizontalAdvance(text) / self.unit
+        return found
 
     def text(
         self, x: float, y: float, width: float, text: str, style: Style = BODY, align: Align = Align.LEFT
     ) -> float:
-        """Set a text in a width, wrapped; its height."""
+        """Set a text in a width, wrapped between values and never inside one; its height."""
         high = self.height(text, style, width, align)
+        text = unbroken(text)
         self.painter.setFont(_font(self._pixels(style), style.bold))
         self.painter.setPen(QColor(style.ink))
         rect = QRectF(x * self.unit, y * self.unit, width * self.unit, (high + 2) * self.unit)

@@ -25,18 +25,20 @@ class FlagLine:
     """Its name and tier alone, e.g. `SpO2 below range (concern)`."""
     spell: str = ""
     """From when until when it was met, or when and by whom it was settled."""
+    is_settled: bool = False
+    """Whether somebody settled it; a closed flag that nobody settled is no longer met."""
 
 
 @dataclass(frozen=True, slots=True)
 class ChangeLine:
-    """One change of the shift: when, what, and what it did in words."""
+    """One change of the shift: when, what, and what followed in words."""
 
     at: str
     what: str
     response: str
     verdict: str = ""
     brief: str = ""
-    """What it did in a few words, for a page that has no room for all of them."""
+    """What followed in a few words, for a page that has no room for all of them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,6 +62,8 @@ class WardRow:
     """What is planned and who was told, where something is to be done; "" elsewhere."""
     sign: str = ""
     """The verdict that its sign shows: never a better that hides a relapse."""
+    is_limited: bool = False
+    """Whether treatment has a limit."""
 
     @property
     def is_grave(self) -> bool:

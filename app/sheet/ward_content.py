@@ -5,11 +5,21 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app import formats
+from app.formats import told_words
 from app.headline import headline
 from app.sheet.due_lines import due_short, gases_due, others_due, skin_line
 from app.sheet.shapes import WardPage, WardRow
 from app.sheet.since_lines import compared_with
-from app.sheet.writer import SKIN_OVERDUE, STATES, SheetWriter, opened, quiet_since, strength
+from app.sheet.writer import (
+    SKIN_OVERDUE,
+    STATES,
+    SheetWriter,
+    is_limited,
+    limits_of_care,
+    opened,
+    quiet_since,
+    strength,
+)
 from app.ward.ordering import GAS
 from app.words import sentence
 from core.figures.shift import ShiftFigures
@@ -53,9 +63,7 @@ class WardWriter(SheetWriter):
             self._change_of_state(s), self._support_short(f), self._latest_response(f),
             tuple(self._flag_line(x) for x in strong), "; ".join(self._remark(x) for x in remarks),
             "; ".join(due_short(d, self._reader) for d in s.due),
-            f"Ceiling: {p.get('ceiling_of_care') or formats.ABSENT}. "
-            f"Resuscitation: {p.get('resuscitation') or formats.ABSENT}.",
-            f.support.ended_at is not None, self._action(s), _sign(f),
+            limits_of_care(p), f.support.ended_at is not None, self._action(s), _sign(f), is_limited(p),
         )  # fmt: skip
 
     def _action(self, s: ShiftFigures) -> str:
@@ -64,7 +72,8 @@ class WardWriter(SheetWriter):
         if not escalate and not any(d.what in GAS and d.state == "overdue" for d in s.due):
             return ""
         plan = str(s.now.profile.get("plan") or formats.ABSENT).rstrip(".")
-        called = f"{self._clock(s.told[-1].at)} {s.told[-1].words or 'somebody'}" if s.told else formats.ABSENT
+        newest = s.told[-1] if s.told else None
+        called = f"{self._clock(newest.at)} {told_words(newest.words or 'somebody')}" if newest else formats.ABSENT
         return f"Plan: {plan}. Told: {called.rstrip('.')}."
 
     def _support_short(self, f: EpisodeFigures) -> str:

@@ -32,7 +32,15 @@ class RowBlock:
     def _about(self) -> str:
         r = self.row
         change = f"{r.change_of_state[0].upper()}{r.change_of_state[1:]}. " if r.change_of_state else ""
-        return f"{r.who}. {change}{r.limits}"
+        return f"{r.who}. {change}".rstrip()
+
+    def _limits_style(self) -> Style:
+        return STRONG if self.row.is_limited else BODY
+
+    def _limits_beside(self, press: Press, width: float) -> bool:
+        """Whether the limits of care have room at the right of who it is."""
+        taken = press.width(self._title(), LABEL) + press.width(self._about(), SMALL) + press.gap(24)
+        return taken + press.width(self.row.limits, self._limits_style()) <= width
 
     def _response_style(self) -> Style:
         return STRONG if self.row.is_grave else BODY
@@ -67,7 +75,11 @@ class RowBlock:
     def _title_height(self, press: Press, width: float) -> float:
         about = width - press.width(self._title(), LABEL) - press.gap(12)
         small = press.height(self._about(), SMALL, about) + press.gap(2.5)
-        return max(press.height(self._title(), LABEL, width), small)
+        one = max(press.height(self._title(), LABEL, width), small)
+        under = (
+            0.0 if self._limits_beside(press, width) else press.height(self.row.limits, self._limits_style(), width)
+        )
+        return one + under
 
     def _gas_height(self, press: Press, width: float) -> float:
         one = press.height(self.row.state, STRONG, width)
@@ -97,7 +109,12 @@ class RowBlock:
         press.text(x, y, width, self._title(), Style(LABEL.size, True, GREY if r.ended else INK))
         taken = press.width(self._title(), LABEL) + press.gap(12)
         press.text(x + taken, y + press.gap(2.8), width - taken, self._about(), SMALL)
+        if self._limits_beside(press, width):
+            press.text(x, y + press.gap(2.3), width, r.limits, self._limits_style(), Align.RIGHT)
         y += self._title_height(press, width)
+        if not self._limits_beside(press, width):
+            under = press.height(r.limits, self._limits_style(), width)
+            press.text(x, y - under, width, r.limits, self._limits_style())
         press.text(x, y, width, r.state, STRONG)
         if self._is_side_by_side(press, width):
             press.text(x, y, width, r.support, BODY, Align.RIGHT)

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from typing import Final
 
 from app import formats
+from app.certainty import starred
 from app.finding_names import marker_name
 from app.headline import ever_acidotic
 from app.operations.handover import Handover
@@ -67,7 +69,7 @@ class SheetWriter:
         return ", ".join(parts)
 
     def _remark(self, f: FlagFigure) -> str:
-        return f"{marker_name(f.marker, self._reader)}, since {self._moment(f.since)}"
+        return f"{starred(marker_name(f.marker, self._reader), f.sure)}, since {self._moment(f.since)}"
 
     def _clock(self, at: int) -> str:
         return formats.clock(at, self._reader.zone)
@@ -82,6 +84,20 @@ def quiet_since(s: ShiftFigures) -> int | None:
     if at is None or s.now.support.ended_at is not None or s.end - at <= QUIET:
         return None
     return at
+
+
+def limits_of_care(profile: Mapping[str, float | str | None]) -> str:
+    """How far treatment goes, in whole words: full support must not be taken for a full ceiling of anything else."""
+    ceiling = formats.quantity("ceiling_of_care", profile.get("ceiling_of_care") or formats.ABSENT)
+    decided = str(profile.get("resuscitation") or formats.ABSENT)
+    resuscitation = f"resuscitation: {decided}" if decided == formats.ABSENT else decided
+    return f"Ceiling of care: {ceiling}; {resuscitation}."
+
+
+def is_limited(profile: Mapping[str, float | str | None]) -> bool:
+    """Whether anything is withheld: who reads only the bold print must read that."""
+    open_ended = ("full", "for resuscitation", "not recorded", None, "")
+    return any(profile.get(k) not in open_ended for k in ("ceiling_of_care", "resuscitation"))
 
 
 def strength(f: FlagFigure) -> tuple[int, int]:

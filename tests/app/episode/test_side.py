@@ -6,6 +6,7 @@ import pytest
 from PySide6.QtWidgets import QLabel
 
 from app.episode.side import SideColumn
+from app.formats import plain
 from app.theme import LIGHT
 from app.words import Reader
 from core.judgement.policy import shipped_policy
@@ -29,7 +30,7 @@ def told(qtbot):
         column.show_figures(figures, shipped_policy(), READER)
         card = column.facts()[0].parentWidget()
         facts = [f for f in column.facts() if f.parentWidget() is card]
-        return [[label.text() for label in f.findChildren(QLabel)] for f in facts]
+        return [[plain(label.text()) for label in f.findChildren(QLabel)] for f in facts]
 
     return texts
 

@@ -7,12 +7,17 @@ from pathlib import Path
 import pytest
 
 from app import demo
+from app.handover.page_html import page_html
 from app.operations import entry, episode
 from app.operations import handover as operations
 from app.operations.handover import Handover
 from app.plain_handover import handover_text
+from app.sheet.blocks import Text
 from app.sheet.content import sheet_content
+from app.sheet.episode_sheet import flag_blocks
 from app.sheet.shapes import EpisodePage, SheetContent, WardRow
+from app.sheet.writer import is_limited, limits_of_care
+from app.theme import LIGHT
 from app.words import Reader
 from core.record.instant import HOUR, parse
 from core.record.message import RecordError
@@ -96,11 +101,47 @@ def test_a_gas_off_support_is_the_gas_and_not_the_patient(tmp_path: Path) -> Non
 def test_oxygen_that_fails_comes_first(content: SheetContent) -> None:
     assert row(content, "Bay A 1").state.startswith("Hypoxaemic: P/F 107 mmHg; not acidotic: pH 7.40")
     page = next(p for p in content.episodes if p.label == "Bay A 1")
-    assert {g.state for g in page.gases} == {"not acidotic"}
+    assert {g.state for g in page.gases} == {"not acidotic", "not acidotic, pH above 7.45"}
 
 
 def row(content: SheetContent, label: str) -> WardRow:
     return next(r for r in content.ward.rows if r.label == label)
+
+
+def test_limits_of_care_are_said_whole_and_strongly(content: SheetContent) -> None:
+    assert row(content, "Bed 4").limits == "Ceiling of care: full treatment; for resuscitation."
+    limited = row(content, "Bay A 4")
+    assert limited.limits == "Ceiling of care: no intubation; not for resuscitation."
+    assert (row(content, "Bed 4").is_limited, limited.is_limited) == (False, True)
+    assert limits_of_care({}) == "Ceiling of care: not recorded; resuscitation: not recorded."
+    assert is_limited({"ceiling_of_care": "comfort", "resuscitation": None})
+    assert f"<b>{limited.limits}</b>" in page_html(content, LIGHT)
+    assert row(content, "Bed 4").limits in page_html(content, LIGHT)
+
+
+def test_an_unconfirmed_threshold_bears_its_star_wherever_its_flag_stands(content: SheetContent) -> None:
+    assert "CONCERN pH below 7.30 and not better: level of care*, since 02:22" in row(content, "Bay A 4").flags
+    assert "ESCALATE pH below 7.20 on support, since 04:18" in row(content, "Bed 4").flags
+    for page in content.episodes:
+        for flag in page.flags:
+            unsure = any(f"[{sure}" in flag.source for sure in ("from memory", "common practice"))
+            assert ("*, since" in flag.head) is unsure, flag.head
+    assert "marked *" in content.caution
+
+
+def test_whom_was_told_and_the_answer_are_two_things(content: SheetContent) -> None:
+    assert "Told: 04:37 medical registrar. Answer: busy, will come." in row(content, "Bed 4").action
+    assert "|" not in handover_text(content)
+
+
+def test_what_is_closed_says_whether_anybody_settled_it(content: SheetContent) -> None:
+    page = next(p for p in content.episodes if p.label == "Bay A 4")
+    closed = [f for f in page.flags if not f.is_open]
+    assert closed
+    assert not any(f.is_settled for f in closed)
+    told = [b.words for b in flag_blocks(page.flags, weaker=True, evidence_of=frozenset()) if isinstance(b, Text)]
+    assert any(t.startswith("No longer met: ") for t in told)
+    assert not any(t.startswith("Settled") for t in told)
 
 
 def test_a_relapse_and_the_sum_since_the_start_stand_on_the_first_page(content: SheetContent) -> None:
@@ -162,7 +203,7 @@ def test_off_the_mask_is_said_loudly(tmp_path: Path) -> None:
     content, page = one(tmp_path, "00:40 bpap-st 14/5 28", "04:10 mask off")
     assert "OFF THE MASK since 04:10" in dict(page.support)["Settings now"]
     assert content.ward.rows[0].support == "OFF THE MASK since 04:10"
-    assert dict(page.facts)["Mask this shift"] == "3.5 h; off 04:10 to now"
+    assert dict(page.facts)["Mask this shift"] == "3 h 30 min; off 04:10 to now"
 
 
 def test_told_remark_plan_and_jobs_are_handed_on(tmp_path: Path) -> None:
