@@ -10,6 +10,7 @@ from typing import Any
 
 from core.record.message import refuse
 from storage.intake.findings import unreadable
+from storage.intake.sheet_formats import GENERAL, number_as_shown
 from storage.intake.spreadsheet_guard import Scan, guarded_copy
 from storage.intake.steady_file import read_bounded
 from storage.intake.table_text import RowBlock
@@ -33,6 +34,8 @@ class Workbook:
         data, self.sha = read_bounded(path, MOST)
         self.size = len(data)
         copy, self._scan = guarded_copy(BytesIO(data))
+        self.without_format: dict[int, int] = {}
+        """By column (from 0) the least decimals of numbers whose cells have no format that says them."""
         try:
             self._book = CalamineWorkbook.from_filelike(copy)
         except (CalamineError, OSError, ValueError) as error:
@@ -61,17 +64,30 @@ class Workbook:
             raise unreadable(0, sheet[:80], "sheet.unknown", accepted=" | ".join(self.sheets)[:400])
         try:
             found = self._book.get_sheet_by_name(sheet)
-            first = found.start[0] if found.start else 0
+            left = found.start[1] if found.start else 0
+            shown = self._scan.formats.of_sheet(sheet, self.sheets.index(sheet) + 1)
             merged = self._merged_rows(found) | self._merged_in_ods(sheet)
-            for number, cells in enumerate(found.iter_rows(), first + 1):
+            for number, cells in enumerate(found.iter_rows(), 1):  # empty rows above are among them
                 if number < first_line:
                     continue
                 if number in merged:
                     raise unreadable(number, merged[number], "sheet.merged", accepted="one value per cell")
-                yield number, [cell_text(c) for c in cells]
+                decimals = shown.row(number)
+                yield number, [self._text(i, c, decimals.get(left + i + 1, GENERAL)) for i, c in enumerate(cells)]
         except CalamineError as error:
             detail = str(error)[:120]
             raise unreadable(0, sheet[:80], "sheet.damaged", detail=detail, accepted="XLSX or ODS") from None
+
+    def _text(self, column: int, value: object, shown: int) -> str:
+        """A cell's text; a number as its cell shows it. The least decimals of numbers without a format are noted."""
+        if not isinstance(value, float):
+            return cell_text(value)
+        if shown == GENERAL:
+            text = cell_text(value)
+            behind = len(text.partition(".")[2])
+            self.without_format[column] = min(behind, self.without_format.get(column, behind))
+            return text
+        return number_as_shown(value, shown)
 
     def _merged_rows(self, sheet: Any) -> dict[int, str]:
         """Rows in which cells are merged over several columns or rows."""

@@ -16,6 +16,8 @@ from typing import BinaryIO
 from xml.parsers import expat
 
 from storage.intake.findings import UnreadableFileError, unreadable
+from storage.intake.sheet_formats import SheetFormats
+from storage.intake.sheet_numbers import NumberWatch
 
 MOST_BYTES = 128 << 20
 """Unpacked bytes of all parts together."""
@@ -24,6 +26,7 @@ DEEPEST = 64
 _PARTS = 2_000
 _MOST_MERGED = 10_000
 _BLOCK = 1 << 18
+_ODS_CONTENT = "content.xml"
 _CELL = re.compile(r"([A-Z]{1,3})([1-9][0-9]{0,6})")
 _WANTED = re.compile(
     r"\[Content_Types\]\.xml|_rels/.*|xl/workbook\.xml|xl/_rels/.*|xl/sharedStrings\.xml|xl/styles\.xml|"
@@ -33,10 +36,12 @@ _WANTED = re.compile(
 
 @dataclass(slots=True)
 class Scan:
-    """What was found in the parts: cells by the area they span, and merged rows of ODS as (sheet, row) from 1."""
+    """What was found in the parts: cells by the area they span, merged rows of ODS as (sheet, row) from 1, and how
+    numbers are shown."""
 
     cells: int = 0
     merged: set[tuple[int, int]] = field(default_factory=set)
+    formats: SheetFormats = field(default_factory=SheetFormats)
 
 
 def guarded_copy(file: BinaryIO) -> tuple[io.BytesIO, Scan]:
@@ -88,6 +93,8 @@ def _look(name: str, data: bytearray, scan: Scan) -> None:
     watch = _Watch(name, scan)
     parser.StartElementHandler = watch.start
     parser.EndElementHandler = watch.end
+    if name == _ODS_CONTENT:
+        parser.CharacterDataHandler = watch.text
     parser.StartDoctypeDeclHandler = watch.doctype
     parser.EntityDeclHandler = watch.doctype
     parser.buffer_text = True
@@ -109,12 +116,14 @@ class _Watch:
         self._rows, self._columns = [1 << 30, 0], [1 << 30, 0]
         self._table = self._row = 0
         self._repeat_row, self._row_cells, self._filled, self._ods_cells = 1, 0, False, 0
+        self._numbers = NumberWatch(name, scan.formats)
 
     def start(self, tag: str, attributes: dict[str, str]) -> None:
         self._depth += 1
         if self._depth > DEEPEST:
             raise unreadable(0, self._name[:80], "sheet.too_deep", accepted=DEEPEST)
         local = tag.rpartition(":")[2]
+        self._numbers.start(local, attributes)
         if local == "c" and "r" in attributes:
             self._note_cell(attributes["r"])
         elif local == "table":
@@ -128,12 +137,17 @@ class _Watch:
 
     def end(self, tag: str) -> None:
         self._depth -= 1
-        if tag.rpartition(":")[2] != "table-row":
+        local = tag.rpartition(":")[2]
+        self._numbers.end(local)
+        if local != "table-row":
             return
         self._row += self._repeat_row - 1
         if self._filled:
             self._ods_cells += self._repeat_row * self._row_cells
             self._check(self._ods_cells)
+
+    def text(self, data: str) -> None:
+        self._numbers.text(data)
 
     def doctype(self, *_: object) -> None:
         raise unreadable(0, self._name[:80], "sheet.document_type", accepted="XML without document types or entities")

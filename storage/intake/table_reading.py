@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Callable
 from pathlib import Path
 
+from core.record.channels import CHANNELS
 from core.record.instant import Instant
-from core.record.message import Message, RecordError, refuse
+from core.record.message import Message, RecordError, Value, refuse
 from storage.draft_batch import SourceFacts
 from storage.intake.findings import Findings, Intake, UnreadableFileError, unreadable
 from storage.intake.held_settings import SettingChanges
@@ -48,9 +49,29 @@ def read_table(
     if not opened.dialect.encoding_is_sure:
         values = {"encoding": opened.dialect.encoding}
         findings.doubt(1, "", opened.dialect.encoding, Message("table.encoding_assumed", values))
+    _doubt_precision(opened, mapping, findings)
     source = SourceFacts("table", path.name, blocks.sha, blocks.size, _facts(opened, mapping, answers, spool))
     made = sorted([*rows.entries, *changes.rows()], key=lambda row: row.line)
     return judged_intake(source, made, spool, findings, existing, progress=progress)
+
+
+def _doubt_precision(table: Table, mapping: Mapping, findings: Findings) -> None:
+    """Say of which columns of a spreadsheet the decimals are not known: without a format 7.40 is kept as 7.4."""
+    if table.book is None:
+        return
+    uses = [(c.column, c.channel, c.unit) for c in mapping.used]
+    if mapping.long is not None:
+        long = mapping.long
+        uses = [(long.value, key, long.units.get(word, "")) for word, key in long.names.items() if key]
+    told: set[str] = set()
+    for column, key, unit in uses:
+        least = table.book.without_format.get(table.header.index(column))
+        usual = 1 if unit == "kPa" else CHANNELS[key].decimals
+        if least is not None and least < usual and column not in told:
+            told.add(column)
+            values: dict[str, Value] = {"column": column, "channel": key}
+            message = Message("sheet.precision_unknown", values)
+            findings.doubt(table.dialect.header_line, column, "", message)
 
 
 def unreadable_table(path: Path, error: UnreadableFileError) -> Intake:

@@ -22,17 +22,24 @@ _RELS = (
 _MAIN = "http://schemas.openxmlformats.org/spreadsheetml/2006/main"
 _R = "http://schemas.openxmlformats.org/officeDocument/2006/relationships"
 _STYLES = (
-    f'<styleSheet xmlns="{_MAIN}"><numFmts count="1"><numFmt numFmtId="170" '
-    'formatCode="yyyy\\-mm\\-dd hh:mm"/></numFmts>'
+    f'<styleSheet xmlns="{_MAIN}"><numFmts count="2"><numFmt numFmtId="170" '
+    'formatCode="yyyy\\-mm\\-dd hh:mm"/><numFmt numFmtId="171" formatCode="0.0&quot; kPa&quot;"/></numFmts>'
     '<fonts count="1"><font/></fonts><fills count="1"><fill/></fills><borders count="1"><border/></borders>'
-    '<cellStyleXfs count="1"><xf/></cellStyleXfs><cellXfs count="2"><xf numFmtId="0"/>'
-    '<xf numFmtId="170" applyNumberFormat="1"/></cellXfs></styleSheet>'
+    '<cellStyleXfs count="1"><xf/></cellStyleXfs><cellXfs count="5"><xf numFmtId="0"/>'
+    '<xf numFmtId="170" applyNumberFormat="1"/><xf numFmtId="2"/><xf numFmtId="171"/><xf numFmtId="9"/></cellXfs>'
+    "</styleSheet>"
 )
+_STYLE_OF = {"date": 1, "0.00": 2, "0.0": 3, "0%": 4}
 
 
 def date(serial: float) -> tuple[str, float]:
     """A cell that shows a date and time; `serial` counts days since 1899-12-30."""
     return "date", serial
+
+
+def shown(value: float, form: str) -> tuple[str, float]:
+    """A number in a cell whose format is `0.00`, `0.0` (with a unit as text behind it) or `0%`."""
+    return form, value
 
 
 Cell = str | float | None | tuple[str, float]
@@ -53,7 +60,7 @@ def _cell(column: int, row: int, value: Cell) -> str:
     if value is None:
         return ""
     if isinstance(value, tuple):
-        return f'<c r="{where}" s="1"><v>{value[1]}</v></c>'
+        return f'<c r="{where}" s="{_STYLE_OF[value[0]]}"><v>{value[1]}</v></c>'
     if isinstance(value, str):
         text = value.replace("&", "&amp;").replace("<", "&lt;")
         return f'<c r="{where}" t="inlineStr"><is><t>{text}</t></is></c>'

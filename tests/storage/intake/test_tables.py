@@ -233,7 +233,7 @@ def test_xlsx_and_ods_read_like_the_same_table_as_text(tmp_path: Path) -> None:
     assert not intake.refusals
     assert values(intake)[0] == ("ph", "2026-03-27T23:30:00+00:00", "7.4 pH", 7.4)
     texts: list[list[str | float]] = [["Sampled", "pH", "pCO2 (kPa)"], ["2026-03-28 00:30", 7.4, 8.1]]
-    ods = write_ods(tmp_path / "gases.ods", ods_rows([*texts, ["2026-03-28 01:00", 7.31, 7.0]]))
+    ods = write_ods(tmp_path / "gases.ods", ods_rows([*texts, ["2026-03-28 01:00", 7.31, 7]]))
     assert values(read_table(ods, answered(ods), now=NOW, answers=Answers("E1"))) == values(intake)
 
 
