@@ -292,11 +292,17 @@ class WardView(QWidget):
 
     def _selection_changed(self, key: str, item: LaneItem | None) -> None:  # noqa: ARG002
         self._in_hand = key
-        self.status.say(self.lanes.sentence_of_selection())
+        self._tell()
         self.selected.emit(key)
 
     def _hovered(self, words: str) -> None:
-        self.status.say(words or self.lanes.sentence_of_selection() or self._elsewhere())
+        self._tell(words)
+
+    def _tell(self, hovered: str = "") -> None:
+        """What is hovered or chosen, in words; a thing on a lane has the whole line, so that it is told whole."""
+        if self._legend is not None:
+            self._legend.signs.setVisible(not hovered and self.lanes.selected_item is None)
+        self.status.say(hovered or self.lanes.sentence_of_selection() or self._elsewhere())
 
     def _item_activated(self, key: str, item: object) -> None:  # noqa: ARG002
         self.opened.emit(key)

@@ -16,7 +16,13 @@ class Legend(QWidget):
 
     def __init__(self, theme: Theme) -> None:
         super().__init__()
-        row = QHBoxLayout(self)
+        self.signs = QWidget()
+        """All but the star, which stands wherever starred names do."""
+        whole = QHBoxLayout(self)
+        whole.setContentsMargins(0, 0, 0, 0)
+        whole.setSpacing(theme.px(4))
+        whole.addWidget(self.signs)
+        row = QHBoxLayout(self.signs)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(theme.px(4))
         for state in (GasState.SEVERE, GasState.ACIDOTIC, GasState.RESOLVED):
@@ -26,7 +32,7 @@ class Legend(QWidget):
         star = QLabel(self.tr("* confirm locally"))
         star.setToolTip(star_note())
         star.setProperty("role", "caption")
-        row.addWidget(star)
+        whole.addWidget(star)
 
     @staticmethod
     def _add(row: QHBoxLayout, theme: Theme, sign: Sign, text: str) -> None:

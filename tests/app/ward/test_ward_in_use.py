@@ -138,3 +138,16 @@ def test_a_thing_chosen_on_a_lane_stays_chosen_when_figures_come(qtbot, window):
     window.model._ticked()
     settled(qtbot, window)
     assert lanes.selected_item is not None
+
+
+def test_a_thing_on_a_lane_is_told_on_the_whole_line(qtbot, window):
+    ward = window.pages.ward
+    window.resize(1280, 800)
+    settled(qtbot, window)
+    assert ward._legend.signs.isVisible()
+    narrow = ward.status.width()
+    qtbot.keyClick(ward.lanes, Qt.Key.Key_End)
+    qtbot.waitUntil(lambda: ward.status.width() > narrow)
+    assert ward.lanes.selected_item.sentence in ward.status.text()
+    qtbot.keyClick(ward.lanes, Qt.Key.Key_Escape)
+    qtbot.waitUntil(lambda: ward._legend.signs.isVisible())
