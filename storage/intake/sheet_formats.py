@@ -8,6 +8,7 @@ from __future__ import annotations
 import re
 from array import array
 from dataclasses import dataclass, field
+from functools import lru_cache
 
 import numpy as np
 
@@ -84,22 +85,17 @@ class Shown:
     """How the numbers of one sheet are shown, row by row."""
 
     def __init__(self, cells: ShownCells, styles: list[int] | None) -> None:
-        self._rows = np.frombuffer(cells.rows, np.uint32) if cells.rows else np.empty(0, np.uint32)
-        self._order = None if (self._rows[1:] >= self._rows[:-1]).all() else np.argsort(self._rows, kind="stable")
-        if self._order is not None:
-            self._rows = self._rows[self._order]
-        self._cells, self._styles = cells, styles
+        rows, columns, shown = (np.array(x, np.int64) for x in (cells.rows, cells.columns, cells.shown))
+        if styles is not None:
+            known = np.array([*styles, GENERAL], np.int64)
+            shown = known[np.where((shown >= 0) & (shown < len(styles)), shown, len(styles))]
+        order = np.argsort(rows, kind="stable")
+        self._rows, self._columns, self._shown = rows[order], columns[order], shown[order]
 
     def row(self, number: int) -> dict[int, int]:
         """Decimals by column (from 1) of a row's numbers; `GENERAL` where no format says."""
-        start, end = np.searchsorted(self._rows, (number, number + 1)).tolist()
-        places = range(start, end) if self._order is None else self._order[start:end].tolist()
-        return {self._cells.columns[i]: self._of(self._cells.shown[i]) for i in places}
-
-    def _of(self, shown: int) -> int:
-        if self._styles is None:
-            return shown
-        return self._styles[shown] if 0 <= shown < len(self._styles) else GENERAL
+        start, end = self._rows.searchsorted((number, number + 1)).tolist()
+        return dict(zip(self._columns[start:end].tolist(), self._shown[start:end].tolist(), strict=True))
 
 
 def decimals_as_shown(text: str, value: float) -> int:
@@ -121,6 +117,7 @@ def decimals_as_shown(text: str, value: float) -> int:
     return GENERAL
 
 
+@lru_cache(maxsize=1 << 16)
 def number_as_shown(value: float, shown: int) -> str:
     """A number as its cell shows it, where that is the number itself; else in its shortest exact form.
 
