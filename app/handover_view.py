@@ -6,7 +6,7 @@ from PySide6.QtCore import Qt, QUrl, Signal
 from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QTextBrowser, QVBoxLayout, QWidget
 
-from app.handover.page_html import page_html
+from app.handover.page_html import anchor_of, page_html
 from app.sheet.shapes import SheetContent
 from app.theme import Theme
 
@@ -91,7 +91,7 @@ class HandoverView(QWidget):
         """To the next (1) or previous (-1) episode's heading, the ward's page before them all."""
         if self._content is None:
             return
-        tops = [0.0, *(self._top_of(page.label) for page in self._content.episodes)]
+        tops = [0.0, *(self._top_of(anchor_of(page.place)) for page in self._content.episodes)]
         here, slack = self.text.verticalScrollBar().value(), self._theme.px(4)
         later = [y for y in tops if y > here + slack] if step > 0 else [y for y in reversed(tops) if y < here - slack]
         if later:

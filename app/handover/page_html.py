@@ -22,6 +22,15 @@ def page_html(content: SheetContent, theme: Theme) -> str:
     return "".join(parts)
 
 
+def anchor_of(place: int) -> str:
+    """Where an episode's part of the page begins, by its place in the order of concern.
+
+    >>> anchor_of(3)
+    'episode-3'
+    """
+    return f"episode-{place}"
+
+
 class _Writer:
     """Writes parts of the page."""
 
@@ -30,10 +39,10 @@ class _Writer:
         self.c = theme.colours
 
     def heading(self, text: str, size: int, anchor: str = "") -> str:
-        name = f'<a name="{escape(anchor)}"></a>' if anchor else ""
+        words = f'<a name="{anchor}">{escape(text)}</a>' if anchor else escape(text)  # an empty anchor is lost
         return (
-            f'{name}<p style="font-size:{self.theme.px(size)}px; font-weight:600; margin-top:{self.theme.px(14)}px; '
-            f'margin-bottom:{self.theme.px(4)}px">{escape(text)}</p>'
+            f'<p style="font-size:{self.theme.px(size)}px; font-weight:600; margin-top:{self.theme.px(14)}px; '
+            f'margin-bottom:{self.theme.px(4)}px">{words}</p>'
         )
 
     def text(self, text: str) -> str:
@@ -65,7 +74,7 @@ class _Writer:
 
     def ward_row(self, r: WardRow) -> tuple[str, ...]:
         quiet = f'<span style="color:{self.c.ink_quiet}">'
-        link = f'<a href="#{escape(r.label)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a>'
+        link = f'<a href="#{anchor_of(r.number)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a>'
         limits = f"<b>{escape(r.limits)}</b>" if r.is_limited else escape(r.limits)
         who = f"{link}<br>{quiet}{escape(r.who)}</span><br>{limits}"
         change = f"<br>{escape(r.change_of_state)}" if r.change_of_state else ""
@@ -95,7 +104,7 @@ class _Writer:
 
     def episode(self, page: EpisodePage, unit: str) -> Iterator[str]:
         yield f'<hr style="background:{self.c.line}">'
-        yield self.heading(page.label, self.theme.type.title, page.label)
+        yield self.heading(page.label, self.theme.type.title, anchor_of(page.place))
         yield self.quiet(page.subtitle)
         yield self.text(page.standing)
         facts = (*page.facts, *page.support)
