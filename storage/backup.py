@@ -10,7 +10,7 @@ from pathlib import Path
 from core.record.message import Message
 from storage import keys, opening
 from storage.engine import PAGE_BYTES, Database, driver_errors, raw_connection
-from storage.errors import os_failure, store_error, translated
+from storage.errors import StoreError, os_failure, store_error, translated
 from storage.verify import findings
 
 
@@ -153,11 +153,28 @@ def _check_whole_pages(path: Path) -> None:
         raise store_error("store.damaged", path=path.name, detail=f"{size} bytes are no whole number of pages")
 
 
+def _bring_along(path: Path, key: bytes | None) -> None:
+    """A copy of a backup of an older format, brought up to date; the backup itself stays as it was."""
+    database = Database(path, key, mode="ro")
+    try:
+        opening.check_facts(database)
+    except StoreError as error:
+        if error.message.key != "store.older":
+            raise
+        from storage.migrate.upgrade import migrate
+
+        database.close()
+        migrate(path, key, None)
+    finally:
+        database.close()
+
+
 def _check_sound(path: Path, key: bytes | None) -> None:
     try:
         _check_opens(path, key)
     except driver_errors() as error:
         raise translated(error, path) from error
+    _bring_along(path, key)
     database = Database(path, key, mode="ro")
     try:
         opening.check_facts(database)

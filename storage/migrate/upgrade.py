@@ -32,13 +32,21 @@ def bring_up_to_date(path: Path, passphrase: str | None, backup_to: Path, script
     if not path.is_file():
         raise store_error("store.missing", path=path.name)
     place.refuse_network_share(path)
-    key = opening.data_key(path, passphrase)
+    return migrate(path, opening.data_key(path, passphrase), backup_to, scripts)
+
+
+def migrate(path: Path, key: bytes | None, backup_to: Path | None, scripts: Path = SCRIPTS) -> tuple[str, ...]:
+    """The same of a store whose key is known. `backup_to` None: it is a copy itself, and its original stays.
+
+    Raises:
+        StoreError: as `bring_up_to_date`.
+    """
     database = Database(path, key)
     try:
         _refuse_newer(database)
         directory = _directory(scripts)
         waiting = _waiting(database, directory)
-        if waiting:
+        if waiting and backup_to is not None:
             backup.backup(path, key, backup_to)
         for revision in waiting:
             _step(database, directory, revision)

@@ -93,3 +93,19 @@ def test_a_step_that_fails_leaves_the_kept_file_and_its_backup(
         with Store.open(file, passphrase=SECRET) as store:
             assert told(store) == said
             assert store.verify() == ()
+
+
+@pytest.mark.parametrize("name", NAMES)
+def test_a_backup_of_an_older_format_restores_and_stays_as_it_was(
+    name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    path, said = unpacked(name, tmp_path)
+    before = path.read_bytes()
+    monkeypatch.setattr(schema, "FORMAT", schema.FORMAT + 1)
+    monkeypatch.setattr(upgrade.migrate, "__defaults__", (scripts_with_a_step(tmp_path / "scripts"),))
+    Store.restore(path, tmp_path / "new.luffmark", passphrase=SECRET)
+    assert path.read_bytes() == before
+    with Store.open(tmp_path / "new.luffmark", passphrase=SECRET) as store:
+        assert store.notices == ()
+        assert told(store) == said
+        assert store.verify() == ()
