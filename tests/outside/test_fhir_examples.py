@@ -7,8 +7,10 @@ examples state them.
 from __future__ import annotations
 
 import json
+import os
 from decimal import Decimal
 from pathlib import Path
+from zipfile import ZipFile
 
 import pytest
 
@@ -20,6 +22,9 @@ from storage.intake.said import Said
 
 FOLDER = Path(__file__).parent / "fhir_examples"
 FILES = sorted(FOLDER.glob("*.json"))
+ARCHIVE = FOLDER / "larger.zip"
+LARGER = ZipFile(ARCHIVE).namelist()
+WHOLE = Path(os.environ.get("FHIR_EXAMPLES", "none"))
 NOW = parse("2026-03-28T02:00:00Z")
 
 
@@ -36,20 +41,47 @@ def with_a_time(name: str, folder: Path) -> Intake:
     return read(path)
 
 
-@pytest.mark.parametrize("path", FILES, ids=lambda p: p.stem)
-def test_taken_or_given_a_reason(path: Path) -> None:
+def check(path: Path) -> Intake:
+    """Every value of a file is taken, refused or left aside, and what is said has words."""
     intake = read(path)
     for found in (*intake.refusals, *intake.aside, *intake.doubts):
         assert found.message.key in templates(), found
     resource = json.loads(path.read_text("utf-8"))
     if resource["resourceType"] == "Observation":
         assert intake.entries or intake.refusals or intake.aside, "nothing is passed over in silence"
+    return intake
+
+
+@pytest.mark.parametrize("path", FILES, ids=lambda p: p.stem)
+def test_taken_or_given_a_reason(path: Path) -> None:
+    check(path)
+
+
+@pytest.mark.parametrize("name", LARGER)
+def test_larger_bundles_are_taken_or_given_a_reason(name: str, tmp_path: Path) -> None:
+    with ZipFile(ARCHIVE) as archive:
+        path = Path(archive.extract(name, tmp_path))
+    assert check(path).whole
+
+
+@pytest.mark.soak
+@pytest.mark.timeout(0)
+@pytest.mark.skipif(not WHOLE.is_dir(), reason="FHIR_EXAMPLES names no folder of the unpacked npm package")
+def test_every_observation_bundle_and_patient_of_the_package() -> None:
+    """All 130 of them, the definitions of FHIR itself among them (up to 35 MB, which is refused as too large)."""
+    paths = [p for kind in ("Observation", "Bundle", "Patient") for p in sorted(WHOLE.glob(f"{kind}-*.json"))]
+    assert len(paths) == 130
+    kept = {p.name for p in FILES} | set(LARGER)
+    told = {p.name: [r.message.key for r in check(p).refusals] for p in paths if p.name not in kept}
+    assert len(told) == 10, "what is not kept here: bundles of definitions, value sets and search parameters"
+    assert told.pop("Bundle-resources.json") == ["file.too_large"]
+    print(told)
 
 
 def test_there_are_examples_of_each_kind() -> None:
     kinds = [p.stem.partition("-")[0] for p in FILES]
     assert (kinds.count("Observation"), kinds.count("Patient")) == (64, 22)
-    assert kinds.count("Bundle") >= 25
+    assert kinds.count("Bundle") + len(LARGER) == 34, "ten more hold nothing but definitions of 2 to 35 MB"
 
 
 @pytest.mark.parametrize(
