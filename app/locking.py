@@ -68,7 +68,7 @@ class Locking(QObject):
         if self._window.doers.review.forget_opened():
             more = self.tr("A closed handover was opened in another program: close it there too.")
         self.lock.page.begin(self.way, person, why, minutes=self._window.preferences.lock_minutes,
-                             has_code=bool(self._model.session.encrypted), more=more)  # fmt: skip
+                             has_code=True, more=more)  # fmt: skip
         self._window.tell_locked()
 
     def set_minutes(self, minutes: int) -> None:
@@ -92,10 +92,18 @@ class Locking(QObject):
 
     def take_proof(self, initials: str) -> None:
         """Somebody has just proved who they are in another way: they made their PIN."""
+        from app.operations import people
+
         if self._model is not None:
             self._proven = initials
             self._model.set_person(initials)
             self._window.prefer(person=initials)
+            self._model.ask(people.code_once, None, done=self._code_told)
+
+    def _code_told(self, outcome: Outcome[str]) -> None:
+        """A plain store has no recovery code of its own: its first ward lead is shown one, this once."""
+        if outcome.value:
+            self._window.doers.store.show_code(outcome.value, opens=False)
 
     # by PIN
 

@@ -81,6 +81,15 @@ def new_key(store_id: str, passphrase: str, cost: Cost = DEFAULT_COST) -> NewKey
     return NewKey(key, _sealed(store_id, wraps, key), code)
 
 
+def plain_code(secret: str) -> str:
+    """A recovery code without the ways of writing it: small letters, groups, letters that look like digits.
+
+    >>> plain_code("na43-sjzo")
+    'NA43SJZ0'
+    """
+    return _code(secret)
+
+
 def new_recovery_code() -> str:
     """A code of 160 random bits in groups of four, easy to write down."""
     text = "".join(secrets.choice(_ALPHABET) for _ in range(_CODE_LENGTH))

@@ -18,7 +18,7 @@ from typing import TYPE_CHECKING, Any
 
 from core.record.instant import SECOND, Instant
 from core.record.message import refuse
-from storage.keys import Cost
+from storage.keys import Cost, new_recovery_code, plain_code
 
 if TYPE_CHECKING:
     from storage.draft_batch import Receipt
@@ -29,6 +29,7 @@ ROLES = (STAFF, LEAD)
 ADDED, PIN_SET, ROLE_SET, RETIRED = "person added", "pin changed", "role changed", "person retired"
 SIGNED_IN, TURNED_AWAY = "signed in", "sign-in refused"
 CODE_USED = "recovery code used"
+CODE_SET = "recovery code of people set"
 PIN_COST = Cost(32_768, 2, 1)
 MOST_INITIALS, LEAST_PIN, MOST_PIN = 12, 4, 12
 FREE_TRIES, MOST_WAIT = 3, 300
@@ -201,6 +202,26 @@ def sign_in(store: Store, initials: str, pin: str, now: Instant) -> Person:
     if not right:
         raise refuse("people.wrong_pin", person=person.initials)
     return person
+
+
+def code_if_none(store: Store, *, by: str, now: Instant) -> str:
+    """Make the code by which who has no PIN gets one, where the store has none: "" where it has. An encrypted store's
+    recovery code serves; a plain one keeps a code under the slow hash, told this once."""
+    if store.is_encrypted or store.person_events((CODE_SET,)):
+        return ""
+    code = new_recovery_code()
+    store.record_event(CODE_SET, person=by, now=now, detail=json.dumps(hashed(plain_code(code))))
+    return code
+
+
+def is_code(store: Store, code: str) -> bool:
+    """Whether a code is the one that gives somebody a PIN; a passphrase, which a whole ward knows, is not."""
+    if not code:
+        return False
+    if store.is_encrypted:
+        return store.is_recovery_code(code)
+    kept = store.person_events((CODE_SET,), newest=1)
+    return any(fits(_read(e.detail), plain_code(code)) for e in kept)
 
 
 def seconds_to_wait(tries: Iterable[PersonEvent], now: Instant) -> int:

@@ -210,12 +210,12 @@ class StoreDeeds(Doer):
 
     # passphrase
 
-    def show_code(self, code: str) -> RecoveryCodeDialog:
-        """Show a recovery code, this once."""
+    def show_code(self, code: str, *, opens: bool = True) -> RecoveryCodeDialog:
+        """Show a recovery code, this once: one that opens the store, or only gives a PIN to who has none."""
         from app.dialogs.passphrase import RecoveryCodeDialog
 
         name = self.model.session.store_path.name
-        dialog = self.code_dialog = RecoveryCodeDialog(name, code, self.window.theme, self.window)
+        dialog = self.code_dialog = RecoveryCodeDialog(name, code, self.window.theme, self.window, opens=opens)
         dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         dialog.finished.connect(self._code_kept)
         dialog.open()

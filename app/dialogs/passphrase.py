@@ -169,19 +169,28 @@ class ChangePassphraseDialog(SecretDialog):
 class RecoveryCodeDialog(AskingDialog):
     """Shows a recovery code once. It closes when the person says that it is kept; it is written nowhere."""
 
-    def __init__(self, name: str, code: str, theme: Theme, parent: QWidget | None = None) -> None:
+    def __init__(
+        self, name: str, code: str, theme: Theme, parent: QWidget | None = None, *, opens: bool = True
+    ) -> None:
         super().__init__("", "", theme, parent)
         self.setWindowTitle(self.tr("Recovery code"))
         self.go.setText(self.tr("Done"))
-        self._name, self._code = name, code
-        title = QLabel(self.tr("The way in when nobody knows the passphrase"))
+        self._name, self._code, self._opens = name, code, opens
+        title = QLabel(
+            self.tr("The way in when nobody knows the passphrase") if opens
+            else self.tr("The way in when nobody has a PIN that fits")
+        )  # fmt: skip
         title.setProperty("role", "emphasis")
         self.body.addWidget(title)
-        told = self.tr(
-            "This code opens {store} as the passphrase does. It is shown this once and kept nowhere in the computer. "
-            "Write it down or print it, seal it, and put it where the ward keeps its keys."
+        told = (
+            self.tr("This code opens {store} as the passphrase does, and gives a PIN to who has none.") if opens
+            else self.tr("This code gives a PIN for {store} to who has none, or has forgotten theirs.")
+        )  # fmt: skip
+        keep = self.tr(
+            "It is shown this once and kept nowhere in the computer. Write it down or print it, seal it, and put it "
+            "where the ward keeps its keys."
         )
-        self.body.addWidget(_text(told.format(store=name)))
+        self.body.addWidget(_text(f"{told.format(store=name)} {keep}"))
         self.code = QLineEdit(code)
         self.code.setReadOnly(True)
         family = QFontDatabase.systemFont(QFontDatabase.SystemFont.FixedFont).family()
@@ -228,6 +237,9 @@ class RecoveryCodeDialog(AskingDialog):
         """What is printed: the store's name, the code, and what it is for."""
         document = QTextDocument()
         told = self.tr("Recovery code of {store}").format(store=self._name)
-        why = self.tr("Opens the store when nobody knows its passphrase. Keep it sealed, away from the computer.")
+        why = (
+            self.tr("Opens the store when nobody knows its passphrase, and gives a PIN to who has none.")
+            if self._opens else self.tr("Gives a PIN to who has none, or has forgotten theirs.")
+        ) + " " + self.tr("Keep it sealed, away from the computer.")  # fmt: skip
         document.setPlainText(f"Luffmark\n\n{told}\n\n{self._code}\n\n{why}\n")
         return document

@@ -75,7 +75,7 @@ def set_pin(store: Store, who: str, now: Instant, request: NewPin) -> Outcome[No
         RecordError: `people.*`.
     """
     own = request.initials.strip().upper() == who
-    if not own and not _holds_code(store, request.recovery_code):
+    if not own and not people.is_code(store, request.recovery_code):
         require_lead(store, who)
     receipt = people.set_pin(store, request.initials, request.pin, by=who, now=now)
     return Outcome(None, receipt.last_seq)
@@ -110,7 +110,7 @@ def pin_by_code(store: Store, who: str, now: Instant, request: NewPin) -> Outcom
     Raises:
         RecordError: `people.wrong_code`, `people.bad_initials`, `people.bad_pin`, `people.weak_pin`.
     """
-    if not _holds_code(store, request.recovery_code):
+    if not people.is_code(store, request.recovery_code):
         raise refuse("people.wrong_code", accepted="the recovery code of this store")
     initials = people.check_initials(request.initials)
     known = people.of_store(store).get(initials)
@@ -122,6 +122,12 @@ def pin_by_code(store: Store, who: str, now: Instant, request: NewPin) -> Outcom
     return Outcome(initials, store.record_event(people.SIGNED_IN, person=initials, now=now).last_seq)
 
 
-def _holds_code(store: Store, code: str) -> bool:
-    """The code alone: the passphrase is known to everybody who opens the store, and gives nobody a right."""
-    return bool(code) and store.is_encrypted and store.is_recovery_code(code)
+def code_once(store: Store, who: str, now: Instant, request: None) -> Outcome[str]:
+    """The code that gives a PIN to who has none, for a ward lead of a plain store that has no such code yet; else "".
+
+    An encrypted store has its recovery code since it was made.
+    """
+    known = people.of_store(store).get(who)
+    if known is None or not known.is_lead or not store.takes_writing():
+        return Outcome("", store.head())
+    return Outcome(people.code_if_none(store, by=who, now=now), store.head())

@@ -74,7 +74,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "statistics.backwards": "The span ends ({end:time}) before it starts ({start:time}).",
     "store.archive": "{path} is an archive of closed episodes: it is open for reading only.",
     "store.backup_failed": "The backup {path} could not be written: {detail}.",
-    "store.busy": "{path} is busy: another program is writing. Nothing was recorded by this step; try again in a moment.",
+    "store.busy": "{path} is busy: another program is writing. Nothing was recorded by this step; try again in a "
+        "moment.",
     "store.busy_for_now": "Another program is writing into {path}: it can be read, and nothing can be recorded until "
         "that ends.",
     "store.cannot_open": "{path} cannot be opened: {detail}.",

@@ -2,7 +2,7 @@
 
 import pytest
 
-from app.operations.people import NewPin, pin_by_code
+from app.operations.people import NewPin, code_once, pin_by_code
 from core.record.message import RecordError
 from storage import people
 from storage.keys import Cost
@@ -56,6 +56,27 @@ def test_a_weak_pin_is_refused_and_nothing_is_kept(store, pin):
     with pytest.raises(RecordError, match=r"people.(weak|bad)_pin"):
         by_code(store, "CD", pin)
     assert store.head() == head
+
+
+def test_a_plain_store_has_a_code_of_its_own_for_its_people(tmp_path, monkeypatch):
+    monkeypatch.setattr(people.hashed, "__defaults__", (CHEAP,))
+    with Store.create(tmp_path / "plain.luffmark", now=NOW) as plain:
+        people.add(plain, "AB", "2580", people.LEAD, by="AB", now=NOW)
+        people.add(plain, "CD", "7391", people.STAFF, by="AB", now=NOW)
+        assert code_once(plain, "CD", NOW, None).value == ""  # a ward lead is shown it, nobody else
+        code = code_once(plain, "AB", NOW, None).value
+        assert len(code.replace("-", "")) == 32
+        assert code_once(plain, "AB", NOW, None).value == ""  # this once
+        assert not any(code in e.detail for e in plain.person_events())
+        with pytest.raises(RecordError, match=r"people.wrong_code"):
+            by_code(plain, "AB", "9137", "NA43-SJZV-YHQS-FFPK-G19D-EX8K-PZ94-J68Y")
+        assert by_code(plain, "AB", "9137", code.lower().replace("-", " ")) == "AB"
+        assert people.sign_in(plain, "AB", "9137", NOW).is_lead
+        assert plain.verify() == ()
+
+
+def test_an_encrypted_store_makes_no_second_code(store):
+    assert code_once(store, "AB", NOW, None).value == ""
 
 
 def test_wrong_tries_before_are_forgiven(store):
