@@ -10,13 +10,16 @@ import pytest
 from hypothesis import HealthCheck, Phase, given, settings
 from hypothesis import strategies as st
 
-from app.operations import as_known, figures
+from app.operations import as_known, figures, handover, statistics
 from app.operations.figures import WardRequest
+from app.sheet.content import sheet_content
+from app.sheet.shapes import EpisodePage
+from app.words import Reader
 from core.figures.json_form import to_json
 from core.judgement.policy import policy_hash, shipped_policy, shipped_text
 from core.record.entries import Action, NewEntry
 from core.record.hindsight import Later
-from core.record.instant import MINUTE, Instant
+from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import RecordError
 from core.record.samples import DeviceSamples
 from storage.draft_batch import DraftBatch, DraftEntry
@@ -56,6 +59,18 @@ def ward(store: Store, at: Instant, known: Instant | None) -> list[dict[str, obj
     return [to_json(f) for f in answer.figures]
 
 
+def handed_over(store: Store, at: Instant, known: Instant | None) -> list[EpisodePage]:
+    """The pages of a handover, but for the one line that tells what came later."""
+    request = handover.HandoverRequest(at - 12 * HOUR, at + HOUR, known)
+    content = sheet_content(handover.prepare(store, "AB", at, request).value, Reader())
+    told = (tuple(line for line in p.to_check if not line.startswith("Not known then")) for p in content.episodes)
+    return [replace(p, to_check=kept, chart=None) for p, kept in zip(content.episodes, told, strict=True)]
+
+
+def counted(store: Store, at: Instant, known: Instant | None) -> object:
+    return statistics.of_ward(store, "AB", at, statistics.StatisticsRequest(at - 12 * HOUR, at, known)).value
+
+
 @settings(max_examples=15, deadline=None, suppress_health_check=list(HealthCheck), phases=[Phase.generate])
 @given(deeds=nights(12), data=st.data())
 def test_a_store_as_known_then_is_a_store_that_never_saw_the_rest(folder: Path, deeds: list[Deed], data) -> None:
@@ -64,6 +79,8 @@ def test_a_store_as_known_then_is_a_store_that_never_saw_the_rest(folder: Path, 
     early, taken = filled(folder, deeds, at)
     with whole, early:
         assert ward(whole, at, at) == ward(early, at, None)
+        assert handed_over(whole, at, at) == handed_over(early, at, None)
+        assert counted(whole, at, at) == counted(early, at, None)
         assert bool(taken) == bool(early.episode_keys())
 
 

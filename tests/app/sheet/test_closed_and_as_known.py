@@ -1,5 +1,6 @@
 """A closed handover stays as it was printed; a review says on every page as of when it was known."""
 
+import re
 import shutil
 from collections.abc import Iterator
 from io import BytesIO
@@ -9,11 +10,13 @@ import pytest
 from pypdf import PdfReader
 
 from app import demo
-from app.operations import entry
+from app.operations import correction, entry, episode
 from app.operations import handover as operations
 from app.sheet.content import sheet_content
 from app.sheet.printing import pdf_bytes
+from app.shift import shift_of
 from app.words import Reader
+from core.judgement.policy import policy_hash, shipped_text
 from core.record.instant import HOUR, MINUTE, parse
 from storage.errors import StoreError
 from storage.store import Store
@@ -52,7 +55,13 @@ def test_a_closed_handover_never_changes(qapp, own: Store, tmp_path: Path) -> No
     document, printed = close(own)
     key = own.episode_keys()[0]
     entry.log_line(own, "EF", NOW + HOUR, entry.LineRequest(key, "ph 7.01 paco2 99", "UTC", True))
+    gas = next(e for e in own.entries(key) if e.channel == "ph")
+    fixed = correction.CorrectionRequest(key, gas.id, "misread", "7.11", confirmed=True)
+    correction.correct(own, "EF", NOW + HOUR, fixed)
+    text = shipped_text().replace("severe_below_ph = { value = 7.25", "severe_below_ph = { value = 7.30")
+    own.put_policy(text, policy_hash(text), "EF", NOW + HOUR)
     assert operations.closed(own, "EF", NOW + HOUR, document).value == printed
+    assert sheet_content(gather(own), Reader(demo.ZONE)) != sheet_content(gather(own, NOW), Reader(demo.ZONE))
     assert all(f"Ledger head {head}" in page for page in texts(printed))
     assert all("Given by" in page and "AB" in page and "CD" in page for page in texts(printed)[:1])
     assert not own.verify()
@@ -98,10 +107,39 @@ def test_a_review_holds_nothing_that_was_recorded_later_and_names_what_came(qapp
     assert not gather(night_store).later
 
 
+@pytest.mark.parametrize(
+    ("moment", "hours", "clocks"),
+    [
+        ("2026-03-29T02:00:00Z", 11, ["22:00", "23:00", "00:00", "01:00", "03:00", "04:00"]),
+        ("2026-10-25T02:00:00Z", 13, ["22:00", "23:00", "00:00", "01:00", "02:00", "02:00", "03:00"]),
+    ],
+)
+def test_hours_and_times_of_a_night_with_a_clock_change(
+    qapp, tmp_path, moment: str, hours: int, clocks: list
+) -> None:
+    """Oslo: 02:00 to 03:00 is skipped in March and comes twice in October."""
+    zone = "Europe/Oslo"
+    night = shift_of(parse(moment), zone)
+    assert (night.end - night.start) / HOUR == hours
+    with Store.create(tmp_path / "w.luffmark", now=night.start - HOUR) as store:
+        episode.begin(store, "AB", night.start, episode.BeginRequest("A", {"label": "Bed 9"}))
+        for after, line in ((0, "bpap-st 16/6 30"), (180, "rr 22"), (60 * hours - 1, "rr 20")):
+            at = night.start + (after + 1) * MINUTE
+            entry.log_line(store, "AB", at, entry.LineRequest("A", line, zone, confirmed=True))
+        request = operations.HandoverRequest(night.start, night.end)
+        content = sheet_content(operations.prepare(store, "AB", night.end, request).value, Reader(zone))
+    page = content.episodes[0]
+    assert dict(page.facts)["Mask this shift"].startswith(f"{hours - 1} h 59 min")
+    assert "19:30 to" in content.ward.shift
+    assert content.ward.shift.endswith("07:30")
+    text = texts(pdf_bytes(content)[0])[1]
+    chart = text[text.index("SpO2 target; dashed") : text.index("Gases (")]
+    found = [c for c in re.findall(r"\b\d\d:00\b", chart) if c >= "22:00" or c <= "04:00"]
+    assert found[: len(clocks)] == clocks
+
+
 def test_a_night_with_a_clock_change_is_one_shift() -> None:
     """29 March 2026 in Oslo: 02:00 to 03:00 is skipped, so the night from 19:30 to 07:30 lasts 11 h."""
-    from app.shift import shift_of
-
     night = shift_of(parse("2026-03-29T02:00:00Z"), "Europe/Oslo")
     assert (night.end - night.start) / HOUR == 11
     autumn = shift_of(parse("2026-10-25T02:00:00Z"), "Europe/Oslo")
