@@ -209,7 +209,7 @@ DEEDS: Final = (
     Deed("close_handover", "review", QT_TRANSLATE_NOOP("action", "Close handover..."), ("Ctrl+Shift+H",),
          QT_TRANSLATE_NOOP("action", "Keep this shift's sheet in the ledger as it is printed now, for good.")),
     Deed("closed_handovers", "review", QT_TRANSLATE_NOOP("action", "Closed handovers..."), ("Ctrl+Shift+O",),
-         QT_TRANSLATE_NOOP("action", "Open a closed handover again, byte for byte.")),
+         QT_TRANSLATE_NOOP("action", "Open a closed handover again, exactly as printed.")),
     Deed("blank_form", "review", QT_TRANSLATE_NOOP("action", "Blank paper form..."), ("Ctrl+Shift+B",),
          QT_TRANSLATE_NOOP("action", "The handover as a form to fill in by hand, for when machines are down."),
          needs_store=False),

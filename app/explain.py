@@ -92,11 +92,19 @@ class Explainer:
             translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
             translate("explain", "Met since {time}.").format(time=wall(flag.since, self.reader.zone)),
             *self._words_on(flag),
-            translate("explain", "Policy {hash}.").format(hash=flag.policy[:16]),
+            self._policy_of(flag),
         )
         name = marker_name(flag.marker, self.reader)
         return Explanation(name, (*evidence, *self._marker(flag)), (), notes, flag.source, flag.sure,
                            detail_sure=flag.detail_sure)  # fmt: skip
+
+    def _policy_of(self, flag: FlagFigure) -> str:
+        """The policy that raised a flag, by its name where it is the one in force."""
+        short = flag.policy[:8]
+        if flag.policy != self.policy.hash:
+            return translate("explain", "By another policy than the one in force ({hash}).").format(hash=short)
+        text = translate("explain", "By the policy {name}, version {version} ({hash}).")
+        return text.format(name=self.policy.name, version=self.policy.version, hash=short)
 
     def _marker(self, flag: FlagFigure) -> Iterator[str]:
         """The marker's own numbers, and whom it applies to."""

@@ -223,6 +223,24 @@ def inert(text: str) -> str:
     return f"<span>{escape(text, quote=False)}</span>".replace("\n", "<br>")
 
 
+def counted(count: int, one: str, many: str) -> str:
+    """A number with the word for one or for many.
+
+    >>> counted(1, "entry", "entries"), counted(2340, "entry", "entries")
+    ('1 entry', '2,340 entries')
+    """
+    return f"{count:,} {one if count == 1 else many}"
+
+
+def opened(text: str) -> str:
+    """The words as a sentence begins; pH keeps its letters.
+
+    >>> opened("escalate"), opened("pH below 7.20")
+    ('Escalate', 'pH below 7.20')
+    """
+    return text if text[:2] == "pH" else text[:1].upper() + text[1:]
+
+
 def zone_name(zone: str) -> str:
     """A zone by its IANA name; the many names of UTC are one.
 
@@ -232,9 +250,7 @@ def zone_name(zone: str) -> str:
     return "UTC" if zone in ("Etc/UTC", "Etc/UCT", "Etc/Universal", "Etc/Zulu", "UTC", "UCT", "Zulu") else zone
 
 
-_UNITS = (
-    "cmH2O|mmHg|kPa|L/min|mmol/L|mL/kg|mL|min|kg|cm|h|s|y|g/L|\N{DEGREE SIGN}C|%"
-)
+_UNITS = "cmH2O|mmHg|kPa|L/min|mmol/L|mL/kg|mL|min|kg|cm|h|s|y|g/L|\N{DEGREE SIGN}C|%"
 _VALUE = re.compile(rf"(?<=\d) (?=(?:{_UNITS})(?![\w/]))|(?<=\d h) (?=\d\d min\b)|(?<=\bpH) (?=\d)")
 
 

@@ -78,7 +78,7 @@ def scrubbed_trace(error: BaseException) -> str:
 def place_of(filename: str) -> str:
     """A file of the program by its room and name; any other by its name alone, because folders name people.
 
-    >>> place_of("/home/jane/luffmark/app/forms/gas_form.py"), place_of("/usr/lib/python3.11/json/decoder.py")
+    >>> place_of("/opt/ward/luffmark/app/forms/gas_form.py"), place_of("/usr/lib/python3.11/json/decoder.py")
     ('app/forms/gas_form.py', 'decoder.py')
     """
     parts = Path(filename.replace("\\", "/")).parts

@@ -12,6 +12,7 @@ from app.course import Stretch
 from app.formats import fraction, gas_pressure, quantity, trimmed
 from app.theme import GasState, Verdict, verdict_of
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
+from app.words.template import quantity_name
 from core.judgement.shapes import GasFigure
 from core.record.channels import CHANNELS
 from core.record.settings import Settings
@@ -111,10 +112,21 @@ def change_sentence(changed: Mapping[str, float | str | None], settings: Setting
     return ", ".join(parts)
 
 
+def step_words(channel: str, before: float | str | None, after: float | str | None) -> str:
+    """One change as it stands inside a sentence: backup rate 14 to 16/min."""
+    name = quantity_name(channel)
+    if not known(after):
+        return translate("phrases", "{name} no longer known").format(name=name)
+    if not known(before) or before == after:
+        return f"{name} {quantity(channel, after)}"
+    text = translate("phrases", "{name} {before} to {after}")
+    return text.format(name=name, before=_bare(channel, before), after=quantity(channel, after))
+
+
 def _bare(key: str, value: float | str | None) -> str:
     """A value whose unit stands behind the one it is paired with."""
     text = quantity(key, value)
-    return text if isinstance(value, str) else text.partition(" ")[0]
+    return text if isinstance(value, str) else text.partition(" ")[0].removesuffix("/min")
 
 
 def gas_words(gas: GasFigure, gas_unit: str) -> str:

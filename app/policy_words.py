@@ -9,7 +9,7 @@ import msgspec
 
 from app.certainty import certainty_words
 from app.finding_names import due_name, group_name, marker_name
-from app.formats import fixed, fraction, trimmed
+from app.formats import fixed, fraction, minutes, trimmed
 from app.phrases import translate
 from app.theme import Tier, tier_word
 from core.judgement.markers.registry import GROUPS, MARKERS
@@ -150,9 +150,10 @@ def _marker(key: str, rule: MarkerRule, told: list[PolicyDifference]) -> Rule:
             else translate("policy", "Outside that population: a remark that says so")
         )
     if rule.gap_min:
-        again = translate("policy", "Met again within {n} min it is the same flag")
-        more.append(again.format(n=trimmed(rule.gap_min)))
-    more.append(translate("policy", "Called stale after {n} min without news").format(n=trimmed(rule.stale_min)))
+        again = translate("policy", "Met again within {time} it is the same flag")
+        more.append(again.format(time=minutes(rule.gap_min)))
+    old = translate("policy", "Shown as old after {time} without a new value")
+    more.append(old.format(time=minutes(rule.stale_min)))
     population = translate("policy", "everyone") if rule.population == "any" else rule.population
     population = population.replace("copd", "COPD").replace("ards", "ARDS")
     return Rule(path, group_name(rule.group), marker_name(key), rule.on, rule.tier, ", ".join(words), population,

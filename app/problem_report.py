@@ -13,6 +13,7 @@ from importlib.metadata import PackageNotFoundError, version
 from pathlib import Path
 from typing import Final
 
+from app.formats import counted
 from app.log_file import newest_lines
 from app.preferences import Preferences
 
@@ -60,7 +61,9 @@ def report(preferences: Preferences, opened: Open | None, log_folder: Path, wind
         if opened.notices:
             lines.append(f"Notices: {', '.join(opened.notices)}")
     log = newest_lines(log_folder, LINES)
-    return "\n".join([*lines, "", f"Newest {len(log)} lines of the log:", *log, ""])
+    trace = "The program's own trace"
+    head = f"{trace}, the newest {counted(len(log), 'line', 'lines')}:" if log else f"{trace}: nothing."
+    return "\n".join([*lines, "", head, *log, ""])
 
 
 def _system() -> str:

@@ -6,6 +6,7 @@ import argparse
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
+from app.formats import counted, wall
 from app.operations import intake as operations
 from core.record.instant import iso
 from core.record.message import refuse
@@ -17,16 +18,18 @@ if TYPE_CHECKING:
 def run(context: Context, args: argparse.Namespace) -> int:
     """List the files, or withdraw the one whose id begins as given."""
     with context.open(read_only=not args.withdraw) as store:
-        found = operations.taken(store, context.by, context.now(), None).value
+        found, zone = operations.taken(store, context.by, context.now(), None).value, context.local_zone()
         if not args.withdraw:
-            text = "\n".join(map(_line, found)) or "No file was taken in."
+            text = "\n".join(_line(s, zone) for s in found) or "No file was taken in."
             context.answer(text, {"taken": [_json(s) for s in found]})
             return 0
         meant = [s for s in found if s.id.startswith(args.withdraw)]
         if len(meant) != 1:
             raise refuse("intake.unknown_source", value=args.withdraw, accepted="the beginning of one id of the list")
         made = operations.withdraw(store, context.by, context.now(), meant[0].id).value
-    text = f"{made.name}: {made.entries} entries and {made.sample_spans} span(s) of device samples withdrawn."
+    entries = counted(made.entries, "entry", "entries")
+    spans = counted(made.sample_spans, "span", "spans")
+    text = f"{made.name}: {entries} and {spans} of device samples withdrawn."
     if made.kept:
         text += f" {made.kept} that somebody has corrected since stay as corrected."
     value = {"file": made.name, "entries": made.entries, "sample_spans": made.sample_spans, "kept": made.kept}
@@ -34,11 +37,13 @@ def run(context: Context, args: argparse.Namespace) -> int:
     return 0
 
 
-def _line(s: TakenSource) -> str:
-    return (
-        f"{s.id[:8]}  {iso(s.recorded_at)}  {s.by or '-'}  {s.kind}  {s.name}: "
-        f"{s.entries:,} entries, {s.samples:,} device samples"
-    )
+KINDS = {"log_csv": "log file", "table": "table", "hl7v2": "HL7 v2", "fhir": "FHIR", "withdrawal": "withdrawal"}
+
+
+def _line(s: TakenSource, zone: str) -> str:
+    entries, samples = counted(s.entries, "entry", "entries"), counted(s.samples, "device sample", "device samples")
+    kind = KINDS.get(s.kind, s.kind)
+    return f"{s.id[:8]}  {wall(s.recorded_at, zone)}  {s.by or 'not named'}  {kind}  {s.name}: {entries}, {samples}"
 
 
 def _json(s: TakenSource) -> dict[str, Any]:

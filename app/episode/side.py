@@ -20,7 +20,7 @@ from app.figure_leak import mask_rows
 from app.figure_rows import RowMaker
 from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
-from app.formats import clock, hours, minutes, since, trimmed
+from app.formats import clock, hours, minutes, opened, since, trimmed
 from app.headline import (
     Headline,
     beside_pf,
@@ -261,7 +261,7 @@ class _Facts:
                 g for g in self.f.flags if g.group == flag.group and g is not flag and g.state in ("raised", "seen")
             ]
             folded = [
-                f"{marker_name(g.marker, self.reader)} ({tier_word(Tier(g.tier))}). {self._evidence(g)}"
+                f"{marker_name(g.marker, self.reader)} ({tier_word(Tier(g.tier))}). {self._evidence(g)} [{g.sure}]"
                 for g in under
             ]
             word = translate("side", "{count} more of this kind").format(count=len(under))
@@ -292,7 +292,7 @@ class _Facts:
         return " ".join(sentence(e, self.reader) for e in flag.evidence)
 
     def _source(self, flag: FlagFigure) -> str:
-        return f"{tier_word(Tier(flag.tier))}. {flag.source} ({certainty_words(flag)})"
+        return f"{opened(tier_word(Tier(flag.tier)))}. {flag.source} ({certainty_words(flag)})"
 
     # due, levers
 

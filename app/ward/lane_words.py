@@ -11,7 +11,7 @@ from app.certainty import starred
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
 from app.course import Course
 from app.finding_names import due_name, marker_name
-from app.formats import clock, minutes, quantity
+from app.formats import clock, minutes, opened
 from app.headline import (
     gas_state_word,
     headline,
@@ -25,12 +25,12 @@ from app.headline import (
 from app.phrases import (
     change_sentence,
     change_word,
-    channel_name,
     gas_name,
     gas_words,
     settings_line,
     settings_word,
     state_of,
+    step_words,
     support_now,
     verdict_or_none,
 )
@@ -168,7 +168,7 @@ class LaneWords:
         parts += verdict_sentences(f)
         parts += flag_words(f)
         parts.append(self._end_word(f) if is_ended(f) else self._due_word(next_due(f)))
-        return ". ".join(p for p in parts if p)
+        return ". ".join(opened(p) for p in parts if p)
 
     # along the clock
 
@@ -235,7 +235,7 @@ class LaneWords:
         return LaneItem(
             LaneKind.GAS,
             gas.at,
-            ". ".join(parts),
+            ". ".join(opened(p) for p in parts),
             word=f"pH {gas.ph_text or gas.ph or ''}",
             verdict=judged_sign(found[1]) if found is not None else None,
             state=state_of(gas.state),
@@ -317,19 +317,17 @@ def _tick_words(course: Course) -> list[str]:
 
 
 def anchor_name(response: ResponseFigure) -> str:
-    """What the anchor was: the start, or the change with its first and last values."""
+    """What the anchor was: the start, or the change, each setting from what to what, as it stands in a sentence."""
     if response.anchor == "start":
         return translate("ward", "the start of support")
     if response.anchor == "break_end":
         return translate("ward", "the end of a break")
-    latest = {s.channel: s for s in response.steps}
+    latest, before = {s.channel: s for s in response.steps}, dict[str, float | str | None]()
+    for s in response.steps:
+        before.setdefault(s.channel, s.before)
     order = sorted(latest.values(), key=lambda s: _STEP_ORDER.get(s.channel, len(_STEP_ORDER)))
-    parts = [_step_words(s.channel, s.after) for s in order[:3]]
+    parts = [step_words(s.channel, before[s.channel], s.after) for s in order[:3]]
     return ", ".join(parts) or translate("ward", "a change of settings")
-
-
-def _step_words(channel: str, after: float | str | None) -> str:
-    return f"{channel_name(channel)} {quantity(channel, after)}"
 
 
 def indication_word(indication: str) -> str:

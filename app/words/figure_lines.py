@@ -294,7 +294,7 @@ class FigureLines:
             text += f" {self.tr('at')} {self.reader.time(s.at)}"
         if s.population == "outside":
             text += f", {self.tr('outside its population')}"
-        return text + (f". {sentence(s.caveat, self.reader)}" if s.caveat else "")
+        return text + (f". {formats.opened(sentence(s.caveat, self.reader))}" if s.caveat else "")
 
     def _risk_class(self, name: str, s: ScoreFigure) -> str:
         """A score that has no points: its class, what is missing, when it was taken."""
@@ -320,7 +320,7 @@ class FigureLines:
             text += f", {self.tr('slope')} {amount(r.slope_per_h, sign=True)} {self.tr('per h')}"
             if r.slope_low is not None and r.slope_high is not None:
                 text += f" ({amount(r.slope_low, sign=True)} {self.tr('to')} {amount(r.slope_high, sign=True)})"
-        return text + (f". {sentence(r.caveat, self.reader)}" if r.caveat else "")
+        return text + (f". {formats.opened(sentence(r.caveat, self.reader))}" if r.caveat else "")
 
     def leak(self, leak: LeakFigure) -> str:
         """Leak: its median, what is meant by it, and time over the limit."""

@@ -29,6 +29,7 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.not_trusted": "{quantity:name} was not to be trusted for {minutes:minutes} from {since:time} to "
         "{at:time}.",
     "evidence.off_support": "Taken off support.",
+    "evidence.on_oxygen": "On FiO2 {fio2:fraction}.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
     "evidence.overdue": "{what:due} was due by {until:time}.",
     "evidence.score": "{score:name}[[ {points:trim} points]][[!points| between {lowest:trim} and {highest:trim}]] "

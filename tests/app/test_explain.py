@@ -1,5 +1,7 @@
 """Every figure explains itself: inputs with times, the source, how sure. The policy's own limits stand there."""
 
+from dataclasses import replace
+
 from app.certainty import sure_words
 from app.explain import Explainer
 from app.words import Reader
@@ -15,6 +17,13 @@ def test_a_flag():
     assert found.source == "Confalonieri, ERJ 2005;25:348"
     assert "confirmed" in found.as_text()
     assert "28-Mar-2026 04:20" in found.as_text()
+
+
+def test_a_flag_names_the_policy_that_raised_it():
+    flag = FIGURES.flags[0]
+    own = EXPLAINER.flag(replace(flag, policy=shipped_policy().hash)).notes[-1]
+    assert own == f"By the policy Shipped policy, version 1 ({shipped_policy().hash[:8]})."
+    assert EXPLAINER.flag(replace(flag, policy="63be9ad0" + "0" * 56)).notes[-1].startswith("By another policy than")
 
 
 def test_a_verdict_names_its_noise_with_the_source():

@@ -40,6 +40,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "evidence.stale": ("at", "minutes"),
         "evidence.gas_doubt": ("doubt", "at"),
         "evidence.off_support": ("at",),
+        "evidence.on_oxygen": ("fio2", "at"),
         "evidence.venous": ("at",),
         "evidence.after_beta_agonist": ("at", "text"),
         "evidence.think_of": ("what",),
@@ -83,6 +84,11 @@ def value_is(
     values: dict[str, Value] = {"quantity": quantity, "value": value, "relation": relation, "limit": limit,
               "limit_kpa": limit_kpa, "at": at, "text": text}  # fmt: skip
     return Message("evidence.value", values)
+
+
+def on_oxygen(fio2: float, at: Instant) -> Message:
+    """The FiO2 that a gas was drawn on, without a limit: it says how much the value means."""
+    return Message("evidence.on_oxygen", {"fio2": fio2, "at": at})
 
 
 def pressure_is(quantity: str, mmhg: float, relation: str, limit: PressureLimit, at: Instant) -> Message:

@@ -32,9 +32,7 @@ def _pao2_points(seen: Observed, rule: MarkerRule, highest: bool | None) -> Iter
             yield Point(gas.at, False)
             continue
         told = [say.pressure_is("pao2", gas.pao2_mmHg, say.BELOW, limit, gas.at)]
-        told.append(
-            say.unknown("fio2") if gas.fio2 is None else say.value_is("fio2", gas.fio2, say.AT_LEAST, 0.21, gas.at)
-        )
+        told.append(say.unknown("fio2") if gas.fio2 is None else say.on_oxygen(gas.fio2, gas.at))
         if highest:
             fio2, flow = rule.limits["fio2"], rule.limits["o2_flow"]
             low = low and seen.on_highest_oxygen(gas, fio2, flow) is True

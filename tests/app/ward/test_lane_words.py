@@ -8,9 +8,9 @@ from app.chart.shapes import LaneKind
 from app.course import course_of
 from app.theme import GasState, Tier, Verdict
 from app.ward.flag_column import short_flags
-from app.ward.lane_words import LaneWords, OnWard
+from app.ward.lane_words import LaneWords, OnWard, anchor_name
 from app.words import Reader
-from core.judgement.shapes import NowFigure
+from core.judgement.shapes import NowFigure, ResponseFigure, Step
 from tests.support.invented_ward import (
     NOW,
     ZONE,
@@ -64,7 +64,7 @@ def test_sentences_carry_values_units_and_times():
     assert "04:20" in gas
     assert "pH 7.22" in gas
     assert "74 mmHg" in gas
-    assert "1 h 15 min after IPAP 20 cmH2O at 03:05" in gas
+    assert "1 h 15 min after IPAP 18 to 20 cmH2O at 03:05" in gas
     change = items(lane, LaneKind.SETTING)[1].sentence
     assert change == "22:20 IPAP 12 to 16 cmH2O"
     assert "25 min" in items(lane, LaneKind.BREAK)[0].sentence
@@ -98,7 +98,7 @@ def test_off_the_mask_stands_in_the_place_of_the_state_and_dims_the_settings():
     assert WORDS.lane(OnWard(calm, course_of(bed.record, NOW)), first=False).state_word == "mask off since 05:21"
     assert lane.off_mask
     assert lane.subtitle.endswith("mask off")
-    assert "mask off since 05:21 (before: BPAP-ST" in lane.sentence
+    assert "Mask off since 05:21 (before: BPAP-ST" in lane.sentence
     assert not lane_of(failing()).off_mask
 
 
@@ -106,10 +106,10 @@ def test_a_gain_that_was_lost_stands_beside_better_and_in_the_mark_of_its_gas():
     bed = next(f for f in sample_ward() if f.label == "Bed 5")
     lane = WORDS.lane(OnWard(bed, course_of(failing().record, NOW)), first=False)
     assert (lane.verdict_word, lane.verdict) == ("gain lost, still better", Verdict.MIXED)
-    assert "gain lost, still better. since the start: better" in lane.sentence
+    assert "Gain lost, still better. Since the start: better" in lane.sentence
     gas = items(lane, LaneKind.GAS)[-1]
     assert gas.verdict is Verdict.MIXED
-    assert "gain lost, still better, " in gas.sentence
+    assert "Gain lost, still better, " in gas.sentence
     assert gas.sentence.endswith("since the start: better")
 
 
@@ -157,3 +157,11 @@ def test_every_item_is_a_sentence_of_its_own(bed):
 )
 def test_short_flags_never_hide_that_there_are_more(names, told):
     assert short_flags(names) == told
+
+
+def test_a_change_is_named_from_what_to_what_as_it_stands_in_a_sentence():
+    steps = (Step(1, "ipap", 18.0, 20.0), Step(2, "ipap", 20.0, 24.0), Step(2, "rate_set", 14.0, 16.0),
+             Step(2, "fio2", None, 0.35))  # fmt: skip
+    told = anchor_name(ResponseFigure(2, "change", 1, steps=steps))
+    assert told == "IPAP 18 to 24 cmH2O, FiO2 35 %, backup rate 14 to 16/min"
+    assert anchor_name(ResponseFigure(2, "change", 1)) == "a change of settings"
