@@ -168,9 +168,12 @@ class FileDeeds(MakingDeeds):
         if self.model.session.has_people:
             self.window.keeping.lock_now()
             return
-        from app.dialogs.sign_in import SignInDialog
+        from app.dialogs.sign_in import SignInDialog, logged_lately
 
-        dialog = SignInDialog(self.model.session.person, self.window.theme, self.window)
+        person, feed = self.model.session.person, self.window.feed
+        records = (a.record for a in feed.answers.values()) if feed is not None else ()
+        recent = logged_lately(records, person)
+        dialog = SignInDialog(person, self.window.theme, self.window, recent=recent)
         if dialog.exec() == QDialog.DialogCode.Accepted:
             self.become(dialog.person)
         dialog.deleteLater()
