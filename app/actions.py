@@ -27,6 +27,11 @@ def name_of(deed: Deed) -> str:
     return _t(deed.name)
 
 
+def menu_name(title: str) -> str:
+    """A menu's name in the reader's language, without the mark of its key."""
+    return _t(title).replace("&", "")
+
+
 def help_of(deed: Deed) -> str:
     """What it does, in the reader's language."""
     return _t(deed.help)
