@@ -96,6 +96,7 @@ class ArchiveDialog(AskingDialog):
         self.told.setText(
             told + " " + self.tr("An archive is a copy that opens in this window, with the same passphrase.")
         )
+        self.grow()
         zone = self._reader.zone
         self.table.setRowCount(len(self.ended))
         for r, e in enumerate(self.ended):

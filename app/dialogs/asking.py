@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from itertools import pairwise
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import Qt, QTimer
 from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import (
     QDialogButtonBox,
     QFormLayout,
     QLabel,
+    QStyle,
     QVBoxLayout,
     QWidget,
 )
@@ -73,6 +74,7 @@ class AskingDialog(FittedDialog):
         super().showEvent(event)
         self._fields_first()
         self.grow()
+        QTimer.singleShot(0, self.grow)  # once more when the style has told every part its size
 
     def _fields_first(self) -> None:
         """Tab goes through the fields, then to the buttons, and begins at the first field."""
@@ -88,6 +90,7 @@ class AskingDialog(FittedDialog):
     def grow(self) -> None:
         """Become tall enough for what stands there now, as far as there is room."""
         self.wrong.setVisible(bool(self.wrong.text()))
+        self._column.activate()  # parts inside parts tell a new size only then
         room = room_for(self)
         width = min(self.width(), room.width())
         self.resize(width, min(max(self._needed(width), self.height()), room.height()))
@@ -97,7 +100,9 @@ class AskingDialog(FittedDialog):
         outer = self._outer
         margins = outer.contentsMargins()
         inner = width - margins.left() - margins.right()
-        parts = [self._column.totalHeightForWidth(inner), self.buttons.sizeHint().height()]
+        bar = self.style().pixelMetric(QStyle.PixelMetric.PM_ScrollBarExtent)
+        # beside a bar that once stood there: it goes only where all fits as narrow as it left it
+        parts = [self._column.totalHeightForWidth(inner - bar), self.buttons.sizeHint().height()]
         if self.wrong.text():
             parts.append(self.wrong.heightForWidth(inner))
         return sum(parts) + outer.spacing() * (len(parts) - 1) + margins.top() + margins.bottom()

@@ -105,6 +105,7 @@ class PeopleDialog(AskingDialog):
             state = self.tr("no, retired") if person.retired else self.tr("yes")
             for c, text in enumerate((person.initials, role, day(person.since, self._reader.zone), state)):
                 self.table.setItem(r, c, QTableWidgetItem(text))
+        self.grow()
         self.lead.setChecked(not self.people)
         self.lead.setEnabled(bool(self.people))
         self._chosen_changed()
