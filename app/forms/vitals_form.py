@@ -10,6 +10,7 @@ from app.forms.number_field import NumberField
 from app.phrases import channel_name
 from core.record.channels import CHANNELS
 from core.record.instant import DAY
+from core.record.units import written
 
 _NUMBERS = {"rr": 20.0, "spo2": 92.0, "hr": 80.0, "sbp": 120.0, "dbp": 70.0, "temp": 37.0, "gcs": 15.0,
             "dyspnoea": 5.0}  # fmt: skip
@@ -28,7 +29,8 @@ class VitalsForm(EntryForm):
         numbers, looks = self.card(self.tr("Counted and measured")), self.card(self.tr("Looked at"))
         for key, start in _NUMBERS.items():
             c = CHANNELS[key]
-            name = channel_name(key) if c.unit in ("", "points") else f"{channel_name(key)}, {c.unit}"
+            unit = self.tr("0 to 10") if key == "dyspnoea" else written(c.unit)
+            name = f"{channel_name(key)}, {unit}" if unit else channel_name(key)
             last = self.patient.record.latest(key)
             field = NumberField(key, name, self.theme, step=0.1 if key == "temp" else 1.0,
                                 starts_at=start if last is None else last)  # fmt: skip

@@ -161,8 +161,10 @@ def check_known(store: Store, key: str) -> None:
     """
     if not store.has_episode(key):
         known = store.episode_keys()
-        near = ", ".join(get_close_matches(key, known, 5, 0.5) or list(known[:8])) or "none yet"
-        raise refuse("episode.unknown", episode=key, accepted=near)
+        near = get_close_matches(key, known, 5, 0.5)
+        shown = ", ".join(near or list(known[:8])) or "none yet"
+        more = "" if near or len(known) <= 8 else f" and {len(known) - 8} more"
+        raise refuse("episode.unknown", episode=key, accepted=f"{shown}{more}", near=bool(near))
 
 
 def load(store: Store, key: str, as_known_at: Instant | None = None) -> Episode:

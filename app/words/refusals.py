@@ -53,7 +53,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "episode.bad_key":
         "'{episode}' cannot name an episode: one word of at most {accepted} printable characters is accepted.",
     "episode.exists": "Episode {episode} exists already. Name {accepted}.",
-    "episode.unknown": "There is no episode '{episode}' in this store. Known: {accepted}.",
+    "episode.unknown": "There is no episode '{episode}' in this store. "
+        "{near:pick yes=Nearest;else=Known}: {accepted}.",
     "erasure.no_reason": "Removing an episode needs its reason: {accepted}.",
     "erasure.unknown_episode": "There is nothing of episode '{episode}' to remove. Accepted: {accepted}.",
     "due_word.no_reason": "That something is not needed here needs its reason: {accepted}.",

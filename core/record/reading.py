@@ -9,6 +9,7 @@ from math import isfinite
 from core.record import instant
 from core.record.channels import Channel, Kind
 from core.record.message import Message, Value, refuse
+from core.record.units import written
 
 Scalar = float | str | None
 MAX_TEXT = 4000
@@ -94,7 +95,7 @@ def _read_number(channel: Channel, text: str, unit_text: str) -> Reading:
     number = unit.to_canonical(typed)
     if unit.name == "%" and channel.unit == "fraction":
         number = typed / 100.0  # exact where x 0.01 is not: 35 % is 0.35
-    check_hard(channel, number, f"{text} {unit.name}".strip())
+    check_hard(channel, number, f"{text} {written(unit.name)}".strip())
     return Reading(channel, number, None, text, unit.name, decimals, soft_doubts(channel, number))
 
 
@@ -117,7 +118,7 @@ def check_hard(channel: Channel, number: float, shown: str) -> None:
     if not low - slack <= number <= high + slack:
         raise refuse(
             "value.past_hard_limit",
-            channel=channel.key, value=shown.removesuffix(" pH"), low=low, high=high, unit=channel.unit,
+            channel=channel.key, value=shown, low=low, high=high, unit=channel.unit,
             accepted=_accepted(channel),
         )  # fmt: skip
 
@@ -143,7 +144,9 @@ def _accepted(channel: Channel) -> str:
     if channel.kind is Kind.INSTANT:
         return "ISO 8601 with offset, e.g. 2026-03-28T02:10+00:00"
     if channel.kind is Kind.NUMBER:
-        units = ", ".join(unit.name for unit in channel.units)
-        span = f"{channel.hard[0]:g} to {channel.hard[1]:g} " if channel.hard else ""
-        return f"a number, {span}{channel.unit} (units: {units})"
+        others = [written(unit.name) for unit in channel.units if unit.name != channel.unit]
+        units = f", or in {' or '.join(others)}" if others else ""
+        unit, hard = written(channel.unit), channel.hard
+        span = f", {hard[0]:g} to {hard[1]:g} {unit}".rstrip() if hard else ""
+        return f"a number{span}{units}"
     return "text"

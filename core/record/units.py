@@ -25,6 +25,18 @@ class Unit:
     spellings: tuple[str, ...] = ()
 
 
+_WRITTEN = {"degC": "\N{DEGREE SIGN}C", "degF": "\N{DEGREE SIGN}F", "pH": "", "points": "", "fraction": "", "y": "years"}
+
+
+def written(unit: str) -> str:
+    """A unit as people write it; none behind a pH, points or a fraction.
+
+    >>> written("degC"), written("points"), written("mmHg")
+    ('°C', '', 'mmHg')
+    """
+    return _WRITTEN.get(unit, unit)
+
+
 def same(name: str, *spellings: str) -> Unit:
     """The canonical unit itself."""
     return Unit(name, float, float, spellings)

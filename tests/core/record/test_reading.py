@@ -6,6 +6,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from app.words import sentence
 from core.record.channels import CHANNELS, Kind, channel
 from core.record.message import RecordError
 from core.record.reading import read_value
@@ -74,3 +75,18 @@ def test_a_number_inside_hard_limits_is_never_refused_in_any_unit(c, part):
 def test_no_text_raises_anything_but_a_refusal_in_words(text, c, unit):
     with suppress(RecordError):
         read_value(c, text, unit)
+
+
+@pytest.mark.parametrize(
+    ("key", "text", "said"),
+    [
+        ("temp", "99", "Temperature 99 °C is not possible. Accepted: a number, 25 to 45 °C, or in °F."),
+        ("dyspnoea", "14", "Dyspnoea 14 is not possible. Accepted: a number, 0 to 10."),
+        ("ph", "9", "pH 9 is not possible. Accepted: a number, 6.5 to 8, or in nmol/L."),
+        ("fio2", "300", "FiO2 300 % is not possible. Accepted: a number, 0.21 to 1, or in %."),
+    ],
+)
+def test_a_refusal_writes_units_as_people_do(key, text, said):
+    with pytest.raises(RecordError) as refused:
+        read_value(channel(key), text)
+    assert sentence(refused.value.message) == said
