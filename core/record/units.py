@@ -25,7 +25,9 @@ class Unit:
     spellings: tuple[str, ...] = ()
 
 
-_WRITTEN = {"degC": "\N{DEGREE SIGN}C", "degF": "\N{DEGREE SIGN}F", "pH": "", "points": "", "fraction": "", "y": "years"}
+_WRITTEN = {
+    "degC": "\N{DEGREE SIGN}C", "degF": "\N{DEGREE SIGN}F", "pH": "", "points": "", "fraction": "", "y": "years",
+}  # fmt: skip
 
 
 def written(unit: str) -> str:
