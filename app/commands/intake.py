@@ -14,12 +14,15 @@ from app.formats import plain
 from app.operations import intake as operations
 from app.operations.outcome import watched
 from app.words import Reader, sentence
+from core.record.message import RecordError
 
 if TYPE_CHECKING:
     from storage.intake.findings import Doubt, Intake, Refusal
     from storage.store import Store
 
 _DOUBTS_SHOWN = 20
+_ATTEMPTS = 3
+"""Readings of one file, where others keep recording of its episodes meanwhile."""
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
@@ -30,21 +33,38 @@ def run(context: Context, args: argparse.Namespace) -> int:
     with context.open_or_create(imported=args.keep_recording_times) as store:
         for path in args.files:
             request = _request(context, path, args)
-            with watched(_progress(path)):
-                intake = operations.read(store, context.by, context.now(), request).value
-            may_leave_out = args.leave_out_refused and intake.whole
-            if (intake.refusals and not may_leave_out) or not intake.whole:
-                _tell_refused(path, intake, reader)
-                if context.json:
-                    context.answer("", {"taken": taken, "refused": _refused_json(path, intake, reader)})
-                return 1
-            if not (intake.entries or intake.chunks or intake.repeated_in_store or intake.aside or intake.refusals):
-                print(f"luffmark: {path} has no rows under its header: nothing was taken.", file=sys.stderr)
-                return 1
-            taken.append(_take(context, store, path, intake, reader, leave_out=may_leave_out))
+            made = _read_and_take(context, store, request, reader, leave_out=args.leave_out_refused)
+            if isinstance(made, dict):
+                taken.append(made)
+                continue
+            if context.json and made.refusals:
+                context.answer("", {"taken": taken, "refused": _refused_json(path, made, reader)})
+            return 1
         context.copy_policy(store)
     context.answer("\n".join(t.pop("text") for t in taken), {"taken": taken})
     return 0
+
+
+def _read_and_take(
+    context: Context, store: Store, request: operations.ReadRequest, reader: Reader, *, leave_out: bool
+) -> dict[str, Any] | Intake:
+    """What a file brought; its intake where it was not taken, the reason being told. Read again when overtaken."""
+    for attempt in range(_ATTEMPTS):
+        with watched(_progress(request.path)):
+            intake = operations.read(store, context.by, context.now(), request).value
+        may_leave_out = leave_out and intake.whole
+        if (intake.refusals and not may_leave_out) or not intake.whole:
+            _tell_refused(request.path, intake, reader)
+            return intake
+        if not (intake.entries or intake.chunks or intake.repeated_in_store or intake.aside or intake.refusals):
+            print(f"luffmark: {request.path} has no rows under its header: nothing was taken.", file=sys.stderr)
+            return intake
+        try:
+            return _take(context, store, request.path, intake, reader, leave_out=may_leave_out)
+        except RecordError as error:
+            if error.message.key != "intake.overtaken" or attempt + 1 == _ATTEMPTS:
+                raise
+    raise AssertionError("every attempt ends by returning or raising")
 
 
 def _check_there(files: list[Path]) -> None:

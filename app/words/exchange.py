@@ -14,12 +14,16 @@ RESULTS: Final[dict[str, str]] = {
     "gas.two_sites": "{channel:name} was measured in a {second} sample, others of that moment in a {first} one. "
         "Accepted: {accepted}.",
     "hl7.message_too_long": "A message has no end within {accepted} bytes.",
+    "hl7.too_many_fields": "A message has more than {accepted} fields: that is no message of results.",
     "hl7.no_message": "This is no HL7 v2 message. Accepted: {accepted}.",
     "hl7.not_a_result": "A message of kind '{value}' holds no results. Accepted: {accepted}.",
     "hl7.unreadable": "The message cannot be cut into segments ({detail}). Accepted: {accepted}.",
     "json.double_key": "A key stands twice in one object. Accepted: {accepted}.",
     "json.no_number": "This is no number of JSON. Accepted: {accepted}.",
     "json.too_deep": "The JSON is nested too deep to be a resource. Accepted: {accepted}.",
+    "json.too_many_values":
+        "The JSON holds more values than can be read at once. Accepted: what takes {accepted} MB of memory; send it "
+        "in parts.",
     "json.unreadable": "The JSON cannot be read: {detail}. Accepted: {accepted}.",
     "patient.more_than_one":
         "The file holds more than one patient[[ ({value})]]: one episode cannot stand for all. Accepted: {accepted}.",

@@ -35,6 +35,12 @@ TEMPLATES: Final[dict[str, str]] = {
     "file.not_allowed": "{path} may not be opened or written by you. Choose another place or ask who owns it.",
     "file.read_only_disk": "{path} lies on a disk that takes no writing. Choose another place.",
     "file.too_large": "The file is too large. Accepted: {accepted}.",
+    "file.too_many_entries":
+        "The file holds more than {accepted} entries beside device samples. Accepted: the same in several files, cut "
+        "by time or episode.",
+    "file.too_many_episodes":
+        "The file holds device samples of more than {accepted} channels of episodes. Accepted: the same in several "
+        "files.",
     "file.exists": "{path} exists already. Name another file, or say --replace.",
     "handover.backwards": "The shift ends ({end:time}) before it starts ({start:time}).",
     "handover.not_begun": "The shift that begins {start:time} has not begun by {now:time}.",

@@ -43,12 +43,16 @@ def read_fhir(
         return made.finished(SourceFacts("fhir", file.name), BY, "status", whole=False)
     holdings = Holdings.of(resources)
     rows = ObservationRows(now, CodeBook(said.codes), made.patients, holdings, made.findings, made.aside, made.spool)
-    for i, found in enumerate(holdings.observations):
-        if cancelled is not None and cancelled():
-            raise refuse("intake.cancelled", path=file.name)
-        if progress is not None and i % 100 == 0:
-            progress(i, len(holdings.observations))
-        made.take(rows.read(found), "specimen")
+    try:
+        for i, found in enumerate(holdings.observations):
+            if cancelled is not None and cancelled():
+                raise refuse("intake.cancelled", path=file.name)
+            if progress is not None and i % 100 == 0:
+                progress(i, len(holdings.observations))
+            made.take(rows.read(found), "specimen")
+    except UnreadableFileError as error:
+        made.findings.refuse(error.line, "", error.value, error.message)
+        return made.finished(SourceFacts("fhir", file.name, sha, size), BY, "status", whole=False)
     for kind, count in Counter(text(f.resource, "resourceType") for f in holdings.others).items():
         if kind not in ("Patient", "Specimen"):
             made.aside.put(0, "resourceType", kind, Message("fhir.other_resource", {"kind": kind, "count": count}))

@@ -11,6 +11,8 @@ from storage.intake.findings import UnreadableFileError, unreadable
 from storage.intake.steady_file import read_bounded
 
 MOST = 32 << 20
+MOST_WEIGHT = 280 << 20
+"""Bytes of memory that a file may take when it is read; 32 MB of observations take about 230 MB."""
 Json = dict[str, Any]
 
 
@@ -28,6 +30,8 @@ def read_resources(path: Path) -> tuple[list[Json], str, int]:
         OSError: it cannot be read.
     """
     data, sha = read_bounded(path, MOST)
+    if _weight(data) > MOST_WEIGHT:
+        raise unreadable(0, path.name, "json.too_many_values", accepted=MOST_WEIGHT >> 20)
     try:
         text = data.decode("utf-8-sig")
     except UnicodeDecodeError as error:
@@ -42,6 +46,12 @@ def read_resources(path: Path) -> tuple[list[Json], str, int]:
         if not isinstance(resource, dict) or not isinstance(resource.get("resourceType"), str):
             raise unreadable(1, "", "fhir.no_resource", accepted="a FHIR R4 resource in JSON")
     return found, sha, len(data)
+
+
+def _weight(data: bytes) -> int:
+    """The bytes of memory that a text of JSON takes at most when it is read: a million `[]` fit into 3 MB."""
+    objects, others = data.count(b"{"), data.count(b"[") + data.count(b",")
+    return 240 * objects + 60 * others + 2 * len(data)
 
 
 def _parsed(text: str, line: int) -> Any:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sized
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -140,6 +140,20 @@ class UnreadableFileError(Exception):
 def unreadable(line: int, value: str, key: str, **values: Value) -> UnreadableFileError:
     """The error that ends the reading of a file."""
     return UnreadableFileError(line, value, Message(key, values))
+
+
+MOST_ENTRIES = 500_000
+"""Entries of one file: they are judged together, and each takes about a kilobyte of memory."""
+
+
+def check_entry_count(entries: Sized, line: int) -> None:
+    """Refuse a file of more entries than can be judged together; device samples are not counted.
+
+    Raises:
+        UnreadableFileError: `file.too_many_entries`.
+    """
+    if len(entries) > MOST_ENTRIES:
+        raise unreadable(line, "", "file.too_many_entries", accepted=MOST_ENTRIES)
 
 
 CLOCK_LEAD: Instant = 5 * 60 * 1_000_000

@@ -15,6 +15,8 @@ from storage.intake.steady_file import SteadyFile
 BLOCK = 1 << 20
 MAX_SEGMENT = 128 * 1024
 MAX_MESSAGE = 4 << 20
+MAX_FIELDS = 100_000
+"""Fields and components of one message: each becomes an object, and a file of separators alone would fill memory."""
 _SKIPPED = (b"FHS", b"BHS", b"BTS", b"FTS")
 _ENCODINGS = {"": "utf-8", "ASCII": "utf-8", "UNICODE UTF-8": "utf-8", "UTF-8": "utf-8", "8859/1": "latin-1",
               "8859/2": "iso8859-2", "8859/15": "iso8859-15", "UNICODE": "utf-8"}  # fmt: skip
@@ -107,6 +109,9 @@ class MessageReader:
 
 def _message(segments: list[bytes], line: int) -> RawMessage:
     data = b"\r".join(segments)
+    marks = sum(data.count(data[at : at + 1]) for at in range(3, min(8, len(data))))
+    if marks > MAX_FIELDS:
+        raise unreadable(line, "MSH", "hl7.too_many_fields", accepted=MAX_FIELDS)
     if data.isascii():
         if b"\x00" in data:
             raise unreadable(line, "NUL", "file.binary", accepted="text")

@@ -13,7 +13,14 @@ from core.record.message import Message
 from storage.draft_batch import SourceFacts
 from storage.intake.columns import ACCEPTED, Columns, read_header
 from storage.intake.device_rows import DeviceRows
-from storage.intake.findings import CLOCK_LEAD, Findings, Intake, UnreadableFileError, unreadable
+from storage.intake.findings import (
+    CLOCK_LEAD,
+    Findings,
+    Intake,
+    UnreadableFileError,
+    check_entry_count,
+    unreadable,
+)
 from storage.intake.judged import judged_intake
 from storage.intake.row_reading import EntryRow, RowReader
 from storage.intake.sample_spool import SampleSpool
@@ -103,6 +110,7 @@ class _Reading:
             return
         if isinstance(made, EntryRow):
             self._entries.append(made)
+            check_entry_count(self._entries, line)
             if made.definition:
                 at = made.draft.entry.at
                 self._spool.note_leak(made.draft.entry.episode, made.definition, at, at, line)

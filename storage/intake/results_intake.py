@@ -8,7 +8,7 @@ from dataclasses import replace
 from core.record.instant import Instant
 from core.record.message import Message, RecordError
 from storage.draft_batch import SourceFacts
-from storage.intake.findings import Findings, Intake
+from storage.intake.findings import Findings, Intake, check_entry_count
 from storage.intake.judged import judged_intake
 from storage.intake.moments_of_gas import SampleSites
 from storage.intake.patients import Patients
@@ -40,6 +40,7 @@ class ResultsIntake:
             row = self._versions.add(result)
             if row is not None:
                 self._made.append(row)
+                check_entry_count(self._made, result.line)
 
     def finished(self, source: SourceFacts, by: str, column: str, *, whole: bool = True) -> Intake:
         """The intake; `column` is where a result's status stands."""

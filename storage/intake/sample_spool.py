@@ -19,10 +19,12 @@ from core.record.channels import Channel
 from core.record.instant import HOUR, Instant
 from core.record.samples import Times, Values
 from storage.chunks import Block, decode, hour_blocks
-from storage.intake.findings import MAX_LISTED
+from storage.intake.findings import MAX_LISTED, unreadable
 from storage.intake.sealed_file import SealedFile
 
 Lines = NDArray[np.int32]
+MOST_SERIES = 50_000
+"""Channels of episodes in one file: a ward has not had as many, and each takes a kilobyte."""
 _PENDING = 1_200_000
 """Samples held as plain arrays (20 bytes each) before they are packed."""
 _HEAD = Struct("<qqII")
@@ -94,8 +96,14 @@ class SampleSpool:
         self, episode: str, channel: Channel, unit: str, definition: str, t: Times, v: Values, lines: Lines,
         decimals: int,
     ) -> None:  # fmt: skip
-        """Add samples of one episode and channel, in any order."""
+        """Add samples of one episode and channel, in any order.
+
+        Raises:
+            UnreadableFileError: `file.too_many_episodes`.
+        """
         series = self._series.setdefault((episode, channel.key), _Series())
+        if len(self._series) > MOST_SERIES:
+            raise unreadable(int(lines[0]), episode[:80], "file.too_many_episodes", accepted=MOST_SERIES)
         series.t.append(t)
         series.v.append(v)
         series.lines.append(lines)

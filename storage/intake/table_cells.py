@@ -16,7 +16,7 @@ from storage.intake.table_times import read_time
 
 ABSENT = frozenset({"", "-", "--", "---", "n/a", "na", "nan", "null", "none", ".", "?", "\N{EN DASH}", "\N{EM DASH}"})
 """What tables write where they have no value (common practice, no source)."""
-_FORMULA = re.compile(r"[=@]|[+\-][^0-9.,\s].*[(!|]|\t|\r")
+_FORMULA = re.compile(r"[=@]|[+\-][^0-9.,\s].*[(!|]|[+\-][\d.,]+[-+*/].*[(!|]|\t|\r")
 
 
 def is_absent(text: str) -> bool:

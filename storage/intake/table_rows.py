@@ -19,7 +19,7 @@ from storage.draft_batch import DraftEntry
 from storage.intake.byte_fields import ByteFields, Offsets, fields_of
 from storage.intake.coded_value import SELF_EVIDENT
 from storage.intake.distinct import groups
-from storage.intake.findings import CLOCK_LEAD, Findings
+from storage.intake.findings import CLOCK_LEAD, Findings, check_entry_count
 from storage.intake.held_settings import SettingChanges
 from storage.intake.mapping import Mapping, is_sampled
 from storage.intake.number_columns import NumberColumn
@@ -103,6 +103,7 @@ class TableRows:
             else:
                 for use in self._mapping.used:
                     self._take_column(of_one, _Target(use.column, CHANNELS[use.channel], use.unit))
+        check_entry_count(self.entries, int(lines[-1]))
 
     # rows and their times
 

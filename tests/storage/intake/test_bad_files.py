@@ -167,6 +167,123 @@ def test_hostile_text(tmp_path: Path, data: bytes, key: str) -> None:
     assert refused(path) == key
 
 
+def peak_of(path: Path, mapping: Mapping | None = None) -> tuple[Intake, int]:
+    """What a file gives by the way that the program reads it, and the memory that Python took for it."""
+    with Store.create(path.with_suffix(".luff"), now=NOW) as store:
+        tracemalloc.start()
+        try:
+            intake = operations.read(
+                store, "AB", NOW, ReadRequest(path, mapping, episode="E1" if mapping else "")
+            ).value
+            return intake, tracemalloc.get_traced_memory()[1]
+        finally:
+            tracemalloc.stop()
+            assert store.head() == 0
+
+
+RESOURCE = b'{"resourceType": "Observation", "status": "final", "x": %s}'
+GREETING = b"MSH|^~\\&|A|L|L|W|202603280030+0000||ORU^R01|1|P|2.5.1\rPID|1||0042\rOBR|1\r"
+TEN_THOUSAND_DEEP = b"[" * 10_000 + b"]" * 10_000
+
+
+@pytest.mark.parametrize(
+    ("name", "data", "key"),
+    [
+        ("a.json", RESOURCE % TEN_THOUSAND_DEEP, "json.too_deep"),
+        ("a.json", RESOURCE % (b'{"a":' * 10_000 + b"1" + b"}" * 10_000), "json.too_deep"),
+        ("a.json", RESOURCE % (b"[" + b"[]," * 3_000_000 + b"[]]"), "json.too_many_values"),
+        ("a.json", RESOURCE % (b"[" + b'{"a":1},' * 1_500_000 + b"{}]"), "json.too_many_values"),
+        ("a.json", b"{" + b" " * (33 << 20), "file.too_large"),
+        ("a.json", RESOURCE % b'"\xff"', "file.encoding"),
+        ("a.hl7", GREETING + b"OBX|" + b"x" * 3_000_000, "line.too_long"),
+        ("a.hl7", GREETING + (b"OBX|" + b"|" * 100_000 + b"\r") * 3, "hl7.too_many_fields"),
+        ("a.hl7", GREETING + (b"NTE|1||" + b"^" * 100_000 + b"\r") * 3, "hl7.too_many_fields"),
+        ("a.hl7", GREETING + b"OBX|1|ST|x||\xe9\r", "file.encoding"),
+        ("a.log", b"episode,at,channel,value,unit,by,note\n" + b"x" * 3_000_000, "line.too_long"),
+        ("a.log", b"episode,at,channel,value,unit,by,note\nE1,\x00", "file.binary"),
+        ("a.log", "episode,at,channel,value,unit,by,note\n".encode("utf-16"), "file.binary"),
+        ("a.log", b'episode,at,channel,value,unit,by,note\nE1,"x\n', "row.quotes"),
+    ],
+    ids=lambda x: x if isinstance(x, str) else "",
+)
+def test_hostile_results_and_logs(tmp_path: Path, name: str, data: bytes, key: str) -> None:
+    path = tmp_path / name
+    path.write_bytes(data)
+    mapping = MAPPING if key == "file.binary" and data.startswith(b"\xff\xfe") else None
+    intake, peak = peak_of(path, mapping) if mapping is None else (read(path), 0)
+    assert (intake.whole, intake.entries, intake.chunks) == (False, (), ())
+    assert intake.refusals[-1].message.key in (key, "table.no_rows")
+    assert intake.refusals[-1].message.key not in sentence(intake.refusals[-1].message), "a refusal has words"
+    assert peak < MEMORY, f"{peak >> 20} MB"
+
+
+def test_more_entries_or_episodes_than_can_be_judged_together(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    from storage.intake import findings, sample_spool
+
+    monkeypatch.setattr(findings, "MOST_ENTRIES", 3)
+    monkeypatch.setattr(sample_spool, "MOST_SERIES", 3)
+    log = "episode,at,channel,value,unit,by,note\n"
+    minutes = [f"2026-03-28T01:{n:02d}:00+00:00" for n in range(5)]
+    logs = {
+        "file.too_many_entries": log + "".join(f"E1,{at},rr,20,/min,AB,\n" for at in minutes),
+        "file.too_many_episodes": log + "".join(f"E{at},{at},leak,20,L/min,device,\n" for at in minutes),
+    }
+    for key, text in logs.items():
+        path = tmp_path / "a.csv"
+        path.write_text(text)
+        assert refused_by_log(path) == key
+    path = tmp_path / "table.csv"
+    path.write_text("time,pH\n" + "".join(f"{at},7.4\n" for at in minutes))
+    assert refused(path) == "file.too_many_entries"
+
+
+def refused_by_log(path: Path) -> str:
+    intake = peak_of(path)[0]
+    path.with_suffix(".luff").unlink()
+    assert not intake.whole
+    return intake.refusals[-1].message.key
+
+
+@pytest.mark.parametrize("year", ["1900", "1989", "2027", "2099", "2100"])
+@pytest.mark.parametrize("kind", ["table", "sheet", "hl7", "fhir", "log"])
+def test_dates_of_another_time_are_refused_by_their_line(tmp_path: Path, store: Store, kind: str, year: str) -> None:
+    """Before there was such a log, or ahead of the clock: both are slips, and none is recorded."""
+    at = f"{year}-03-28T01:00:00+00:00"
+    path = tmp_path / "a.file"
+    if kind == "sheet":
+        write_xlsx(path, sheet_xml([["time", "pH"], [at[:16].replace("T", " "), 7.4]]))
+    else:
+        path.write_text({
+            "table": f"time,pH\n{at[:16].replace('T', ' ')},7.4\n",
+            "hl7": message(gas(), at=f"{year}03280100+0000"),
+            "fhir": '{"resourceType": "Observation", "status": "final", "code": {"coding": [{"system": '
+                    '"http://loinc.org", "code": "9279-1"}]}, "valueQuantity": {"value": 20}, '
+                    f'"effectiveDateTime": "{at}"}}',
+            "log": f"episode,at,channel,value,unit,by,note\nE1,{at},rr,20,/min,AB,\n",
+        }[kind])  # fmt: skip
+    is_table = kind in ("table", "sheet")
+    request = ReadRequest(path, MAPPING if is_table else None, episode="" if kind == "log" else "E1")
+    intake = operations.read(store, "AB", NOW, request).value
+    assert intake.entries == ()
+    keys = {r.message.key for r in intake.refusals}
+    assert keys <= {"instant.out_of_range", "instant.in_future", "instant.unreadable"}
+    assert keys
+
+
+@pytest.mark.parametrize(
+    "formula", ['=HYPERLINK("http://x","y")', "@SUM(A1)", "+cmd|' /C calc'!A0", "-2+3+cmd|'x'!A0"]
+)
+def test_a_formula_in_a_text_column_is_refused(tmp_path: Path, formula: str) -> None:
+    mapping = MAPPING.with_column("note", "note")
+    path = tmp_path / "a.csv"
+    quoted = formula.replace('"', '""')
+    path.write_text(f'time,pH,note\n2026-03-28 00:30,7.4,"{quoted}"\n')
+    intake = read_table(path, mapping, now=NOW, answers=Answers("E1"))
+    assert [(r.line, r.column, r.message.key) for r in intake.refusals] == [(2, "note", "value.formula")]
+
+
 def test_a_wrong_encoding_named_by_a_person_is_refused_by_line(tmp_path: Path, store: Store) -> None:
     path = tmp_path / "a.csv"
     path.write_bytes("time,pH,note\n2026-03-28 00:30,7.4,müde\n".encode("cp1252"))
