@@ -20,6 +20,8 @@ SCALE = Style(7.0, False, GREY)
 RIBBON_SHARE = 1.3
 _LEFT, _RIGHT, _AXIS = 56.0, 30.0, 12.0
 _TEXT_HIGH = 8.6
+_LEAST_SCALED = 15.0
+"""A strip less high than this has no room for both ends of its scale; its values stand over it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -147,7 +149,7 @@ class _Plot:
         p = self.press
         low, most = _range(strip)
 
-        ground = top + _TEXT_HIGH  # values stand in a row of their own over the strip: they touch no line
+        ground = top + _TEXT_HIGH + 2.0  # values stand in a row of their own over the strip: they touch no line
 
         def y(value: float) -> float:
             return top + high - (value - low) / (most - low) * (top + high - ground)
@@ -161,8 +163,9 @@ class _Plot:
         p.line(self.left, top + high, self.left + self.width, top + high, 0.3, LINE)
         decimals = 2 if strip.name == "pH" else 0
         right = self.left + self.width + 5
-        p.text(right, ground - 4, _RIGHT - 5, formats.fixed(most, decimals), SCALE)
-        p.text(right, top + high - 7, _RIGHT - 5, formats.fixed(low, decimals), SCALE)
+        if high - _TEXT_HIGH >= _LEAST_SCALED:
+            p.text(right, ground - 4, _RIGHT - 5, formats.fixed(most, decimals), SCALE)
+            p.text(right, top + high - 7, _RIGHT - 5, formats.fixed(low, decimals), SCALE)
         for part in joined(strip.line):
             p.path([(self.x(int(t)), y(float(v))) for t, v in zip(part.t, part.v, strict=True)], 0.55, GREY)
         self._dots(strip, y, top)

@@ -42,6 +42,7 @@ class EpisodeWriter(SheetWriter):
             tuple(self._plan(f)),
             str(f.profile.get("handover_remark") or ""), tuple(self._to_check(s)), tuple(self._levers(f)),
             since_head(self._h.handed, self._reader), since_lines(self._h.since[s.episode], lines),
+            since_lines(self._h.since[s.episode], lines, short=True),
         )  # fmt: skip
 
     def _plan(self, f: EpisodeFigures) -> Iterator[Fact]:

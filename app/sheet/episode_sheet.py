@@ -23,7 +23,8 @@ def upper_blocks(page: EpisodePage) -> Iterator[Block]:
     yield Facts(page.facts)
     for fact in page.support:
         yield Facts((fact,), 1, value_style=STRONG if fact[0] == "Settings now" else BODY)
-    yield Facts((("What changed", f"{page.since_head}: {' '.join(page.since)}"),), 1)
+    since = page.since_short if page.brief.since else page.since
+    yield Facts((("What changed", f"{page.since_head}: {' '.join(since)}"),), 1)
     yield from _changes(page)
     yield Heading("The shift on one clock", _CHART_KEY)
 
@@ -85,10 +86,9 @@ def flag_blocks(flags: tuple[FlagLine, ...], *, weaker: bool, evidence_of: froze
     """
     opened = [f for f in flags if f.is_open]
     rows = [f for f in opened if f.is_strongest or weaker]
-    for flag in rows:
-        tier, _, head = flag.head.partition(" ")
-        shown = f"{flag.evidence} {flag.source}".strip() if flag.tier in evidence_of else ""
-        yield Flag(tier.lower(), head, shown, STRONG if flag.is_strongest else BODY)
+    yield from (_flag(f, evidence=True) for f in rows if f.tier in evidence_of)
+    alone = [_flag(f, evidence=False) for f in rows if f.tier not in evidence_of]
+    yield from (SideBySide(tuple(alone[n : n + 1]), tuple(alone[n + 1 : n + 2])) for n in range(0, len(alone), 2))
     under = [f for f in opened if f not in rows]
     if under:
         yield Text(f"Under these, counted once: {'; '.join(f.head for f in under)}.")
@@ -103,6 +103,12 @@ def flag_blocks(flags: tuple[FlagLine, ...], *, weaker: bool, evidence_of: froze
                 yield Text(f"{head}: {'; '.join(_closed(told))}.")
     if not flags:
         yield Text("No flag was open or raised this shift.")
+
+
+def _flag(flag: FlagLine, *, evidence: bool) -> Flag:
+    tier, _, head = flag.head.partition(" ")
+    shown = f"{flag.evidence} {flag.source}".strip() if evidence else ""
+    return Flag(tier.lower(), head, shown, STRONG if flag.is_strongest else BODY)
 
 
 def _closed(flags: Iterable[FlagLine]) -> Iterator[str]:

@@ -66,12 +66,13 @@ def shorter(page: EpisodePage) -> Iterator[EpisodePage]:
     brief = page.brief
     for left in range(1, len(page.to_check)):
         yield replace(page, brief=(brief := replace(brief, checks=left)))
+    yield replace(page, brief=(brief := replace(brief, since=True)))
     yield replace(page, brief=(brief := replace(brief, weaker_evidence=True)))
     for short in range(2, len(page.changes) - _KEPT_CHANGES + 1):
         yield replace(page, brief=(brief := replace(brief, changes=short)))
     for out in range(1, len(page.gases) - _KEPT_GASES + 1):
         yield replace(page, brief=(brief := replace(brief, gases_out=out)))
-    for short in range(max(brief.changes + 1, 2), len(page.changes)):
+    for short in range(brief.changes + 1, len(page.changes)):
         yield replace(page, brief=(brief := replace(brief, changes=short)))
     for tiers in ({"escalate", "concern"}, {"escalate"}, set[str]()):
         yield replace(page, brief=(brief := replace(brief, evidence_of=frozenset(tiers))))

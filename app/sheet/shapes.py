@@ -96,6 +96,8 @@ class WardPage:
 class PageBrevity:
     """How much of a page is said shorter or left out so that it fits; what is left out is said to be."""
 
+    since: bool = False
+    """Flags raised and gone since the last handover are counted, not named twice."""
     weaker_evidence: bool = False
     """Evidence of flags that stand under a stronger one is left to the record."""
     checks: int = 0
@@ -138,6 +140,8 @@ class EpisodePage:
     since_head: str = ""
     since: tuple[str, ...] = ()
     """What is otherwise than was handed over, a sentence each."""
+    since_short: tuple[str, ...] = ()
+    """The same with its flags counted: they stand with their times among the flags of the page."""
     brief: PageBrevity = PageBrevity()
 
 

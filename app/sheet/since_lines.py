@@ -38,18 +38,18 @@ def since_head(handed: Handed, reader: Reader) -> str:
     return f"Since the last handover, {formats.wall(handed.at, reader.zone)}"
 
 
-def since_lines(since: SinceHandover, lines: FigureLines) -> tuple[str, ...]:
-    """A sentence for each thing that is otherwise."""
+def since_lines(since: SinceHandover, lines: FigureLines, *, short: bool = False) -> tuple[str, ...]:
+    """A sentence for each thing that is otherwise; `short` counts the flags."""
     if not since.was_there:
         return ("Not on the ward then; all of it is new.",)
     if since.is_nothing:
         return ("Nothing is otherwise.",)
-    return tuple(_SinceWriter(since, lines).all())
+    return tuple(_SinceWriter(since, lines, short).all())
 
 
 class _SinceWriter:
-    def __init__(self, since: SinceHandover, lines: FigureLines) -> None:
-        self._s, self._lines = since, lines
+    def __init__(self, since: SinceHandover, lines: FigureLines, short: bool) -> None:
+        self._s, self._lines, self._short = since, lines, short
         self._reader = lines.reader
 
     def all(self) -> Iterator[str]:
@@ -63,9 +63,11 @@ class _SinceWriter:
             yield f"State: {self._state()}."
         if s.verdicts:
             yield f"Verdicts: {'; '.join(self._verdict(v) for v in s.verdicts)}."
-        if s.raised:
+        if self._short and (s.raised or s.gone):
+            yield f"Flags: {len(s.raised)} raised, {len(s.gone)} settled or no longer met, below with their times."
+        if s.raised and not self._short:
             yield f"Flags raised: {'; '.join(self._flag(f) for f in s.raised)}."
-        if s.gone:
+        if s.gone and not self._short:
             yield f"Flags settled or no longer met: {'; '.join(self._flag(f) for f in s.gone)}."
         if s.done:
             yield f"Done: {'; '.join(self._done(s.done))}."

@@ -192,14 +192,19 @@ class DueList:
                 top += self._high(press, item, width)
 
 
-def ward_blocks(page: WardPage, *, brief: bool = False) -> list[Block]:
-    """The page's blocks from top to bottom, without signatures; `brief` where there are many quiet episodes."""
+def _is_quiet(row: WardRow) -> bool:
+    return row.tier not in ("escalate", "concern") and not row.is_grave
+
+
+def ward_blocks(page: WardPage, *, brief: int = 0) -> list[Block]:
+    """The page's blocks from top to bottom, without signatures; so many quiet rows, the last first, said shorter."""
+    quiet = [r for r in page.rows if _is_quiet(r)]
+    short = quiet[len(quiet) - brief :]
     blocks: list[Block] = [SeeFirst(page.see_first)]
     if page.quiet:
         blocks.append(Text(f"{page.quiet[:1].upper()}{page.quiet[1:]}.", STRONG))
     blocks.append(Heading("All episodes, in order of concern", f"{len(page.rows)} in this shift"))
-    rows = [RowBlock(r, brief and r.tier not in ("escalate", "concern") and not r.is_grave) for r in page.rows]
-    blocks += rows or [Text("No episode stood in this shift.")]
+    blocks += [RowBlock(r, r in short) for r in page.rows] or [Text("No episode stood in this shift.")]
     blocks.append(Heading("Due in the next 4 h, and overdue", "gases first, the longest overdue on top"))
     if page.due:
         blocks.append(DueList(page.due))
@@ -208,8 +213,8 @@ def ward_blocks(page: WardPage, *, brief: bool = False) -> list[Block]:
         blocks.append(Text(page.skin or "Nothing is due."))
     small = [f"Missing from the record: {' '.join(page.missing)}"] if page.missing else []
     small += [page.compared] if page.compared else []
-    if any(r.brief for r in rows):
-        small.append("Responses of episodes without a flag of concern stand on their own pages.")
+    if short:
+        small.append(f"On their own pages stand the responses of {', '.join(r.label for r in short)}.")
     if small:
         blocks.append(Text(" ".join(small), SMALL))
     return blocks
@@ -219,13 +224,16 @@ def split_ward(
     page: WardPage, press: Press, width: float, high: float, signed: Signatures
 ) -> list[tuple[float, list[Block]]]:
     """The ward's blocks as pages: one where any scale lets it fit, else as many as the smallest needs."""
-    for brief in (False, True):
-        blocks = ward_blocks(page, brief=brief)
-        for scale in SCALES if not brief else SCALES[-1:]:
-            at = press.at_scale(scale)
-            if height_of(blocks, at, width) + signed.height(at, width) <= high:
-                return [(scale, blocks)]
+    blocks = ward_blocks(page)
+    for scale in SCALES:
+        at = press.at_scale(scale)
+        if height_of(blocks, at, width) + signed.height(at, width) <= high:
+            return [(scale, blocks)]
     at = press.at_scale(SCALES[-1])
+    for brief in range(1, 1 + sum(_is_quiet(r) for r in page.rows)):  # the least in need of words first
+        blocks = ward_blocks(page, brief=brief)
+        if height_of(blocks, at, width) + signed.height(at, width) <= high:
+            return [(at.scale, blocks)]
     pages: list[tuple[float, list[Block]]] = []
     current: list[Block] = []
     room = high - signed.height(at, width)

@@ -11,16 +11,21 @@ import pytest
 from pypdf import PdfReader
 from PySide6.QtWidgets import QApplication
 
+from app import demo
 from app.formats import ABSENT
 from app.operations import handover as operations
 from app.operations.outcome import CancelledError, watched
 from app.plain_handover import handover_text
+from app.sheet.content import sheet_content
 from app.sheet.gas_table import GasRow
 from app.sheet.press import LEAST_PRINT
 from app.sheet.printing import PAPERS, pdf_bytes, write_pdf
 from app.sheet.shapes import ChangeLine, FlagLine, SheetContent
+from app.words import Reader
+from core.record.instant import HOUR, parse
 from core.record.message import RecordError
 from storage.store import Store
+from tests.app.sheet.conftest import START
 
 HEADINGS = (
     "Settings now", "Leak, interface", "What changed", "Changes this shift and their responses",
@@ -75,8 +80,7 @@ def test_the_wards_page_says_all_of_every_episode(printed: tuple[str, bytes], co
         for part in (f"{row.number} {row.label}", row.who, row.state, row.support, row.limits):
             assert _flat(part) in text, part
         quiet = row.tier not in ("escalate", "concern") and not row.is_grave
-        told = "Responses of episodes without a flag of concern stand on their own pages."
-        elsewhere = quiet and _flat(told) in text
+        elsewhere = quiet and _flat(row.label) in text.partition(_flat("On their own pages stand"))[2]
         assert _flat(row.response) in text or elsewhere, row.label
         for flag in row.flags:
             tier, _, words = flag.partition(" ")
@@ -90,7 +94,8 @@ def test_the_wards_page_says_all_of_every_episode(printed: tuple[str, bytes], co
 def test_an_episodes_page_says_all_that_is_handed_over(printed: tuple[str, bytes], content: SheetContent) -> None:
     for text, page in zip(pages_of(printed[1])[1:], content.episodes, strict=True):
         assert text.startswith(_flat(page.label))
-        parts = [page.subtitle, page.standing, *page.due, *page.told, *page.levers, page.since_head, *page.since]
+        parts = [page.subtitle, page.standing, *page.due, *page.told, *page.levers, page.since_head]
+        assert any(all(_flat(line) in text for line in told) for told in (page.since, page.since_short)), page.label
         parts += [x for fact in (*page.facts, *page.support) for x in fact]
         parts += [x for fact in (*page.plan, *page.care) if fact[1] != ABSENT for x in fact]
         parts += [x for c in page.changes[-1:] for x in (c.at, c.what, c.response)]
@@ -281,3 +286,32 @@ def test_a_closed_handover_is_kept_as_it_was_printed(content: SheetContent, tmp_
         kept = operations.close(store, "AB", 6, operations.ClosedHandover("night", data)).value
         assert operations.closed(store, "AB", 7, kept).value == data
         assert store.verify() == ()
+
+
+@pytest.mark.parametrize("paper", sorted(PAPERS))
+def test_after_a_closed_one_each_episode_still_has_one_page(night_store: Store, tmp_path: Path, paper: str) -> None:
+    night_store: Store, tmp_path: Path, paper: str
+) -> None:
+    """The fullest pages of the night: every change since the last handover comes on top."""
+    night_store.backup(tmp_path / "copy")
+    Store.restore(tmp_path / "copy", tmp_path / "own.luff")
+    now, reader = demo.demo_now(), Reader(demo.ZONE)
+    with Store.open(tmp_path / "own.luff") as store:
+        first = operations.HandoverRequest(START - 4 * HOUR, parse("2026-03-28T02:00:00Z"))
+        made = operations.prepare(store, "AB", now, first).value
+        kept = operations.ClosedHandover("Night, AB to CD", b"%PDF", operations.facts_of(made))
+        operations.close(store, "AB", now, kept)
+        content = sheet_content(
+            operations.prepare(store, "AB", now, operations.HandoverRequest(START, now)).value, reader
+        )
+    data, pages = pdf_bytes(content, paper)
+    assert pages == 1 + len(content.episodes)
+    texts = pages_of(data)
+    assert _flat("told since the last closed handover, as of 28-Mar-2026 02:00: Night, AB to CD.") in texts[0]
+    for text, page in zip(texts[1:], content.episodes, strict=True):
+        assert _flat("Since the last handover, 28-Mar-2026 02:00: ") in text
+        assert any(all(_flat(line) in text for line in told) for told in (page.since, page.since_short)), page.label
+    told = {p.label: " ".join(p.since) for p in content.episodes}
+    assert "Settings: IPAP 18 to 24 cmH2O, FiO2 30 to 35 %, backup rate 14 to 16/min." in told["Bed 4"]
+    assert "Flags raised: pH below 7.20 on support 04:18;" in told["Bed 4"]
+    assert "no longer met" in told["Bed 5"]
