@@ -6,7 +6,6 @@ once the preview of that very text is shown: nothing is recorded unseen.
 
 from __future__ import annotations
 
-from enum import StrEnum
 from html import escape
 
 from PySide6.QtCore import Qt, Signal
@@ -30,29 +29,21 @@ from app.session import SessionModel
 from app.strip.caution_line import with_caution
 from app.strip.completion import completed, completions
 from app.strip.line_field import LineField
-from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, OneKeyButtons
+from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, TOLD, OneKeyButtons
 from app.strip.preview_words import preview_words, recorded_words, undone_words
 from app.strip.said_html import completion_html, marked, preview_html, quiet
 from app.strip.sent_lines import Sent, SentLines
 from app.strip.settle_time import SettleTime
+from app.strip.state import State
 from app.strip.undo_stack import UndoStack
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.record.episode import Episode
 
+LEAST_LINE = 200
+"""Least width of the line at 100 % beside the keys' buttons; where it has less they stand under it."""
 TIGHT = 560
 """Least height of the window at 100 % at which buttons have a row of their own; their keys and menu stay."""
-
-
-class State(StrEnum):
-    """What the line under the strip says."""
-
-    IDLE = "idle"
-    AWAITED = "awaited"
-    READY = "ready"
-    ASKING = "asking"
-    REFUSED = "refused"
-    TOLD = "told"
 
 
 class LogStrip(QFrame):
@@ -113,6 +104,7 @@ class LogStrip(QFrame):
         self.buttons[GAS_SENT].clicked.connect(self.gas_sent)
         self.buttons[MASK].clicked.connect(self.mask_moved)
         self.buttons[CHECKED].clicked.connect(self.checked)
+        self.buttons[TOLD].clicked.connect(self.told)
 
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
@@ -132,11 +124,11 @@ class LogStrip(QFrame):
         """Where the line would be too short, the keys' buttons stand under it."""
         super().resizeEvent(event)
         rest = self.width() - self.keys.needed() - self.whom.sizeHint().width()
-        tight = rest < self._theme.px(240) and self.window().height() < self._theme.px(TIGHT)
+        tight = rest < self._theme.px(LEAST_LINE) and self.window().height() < self._theme.px(TIGHT)
         self.keys.setVisible(not tight)
         self._fit_words(tight)
         direction = QBoxLayout.Direction
-        self._row.setDirection(direction.LeftToRight if rest >= self._theme.px(240) else direction.TopToBottom)
+        self._row.setDirection(direction.LeftToRight if rest >= self._theme.px(LEAST_LINE) else direction.TopToBottom)
 
     # whom it is for
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QHBoxLayout, QPushButton, QWidget
 
-GAS_SENT, MASK, CHECKED = "gas sent", "mask", "checked no change"
+GAS_SENT, MASK, CHECKED, TOLD = "gas sent", "mask", "checked no change", "told"
 
 
 class OneKeyButtons(QWidget):
@@ -20,6 +20,7 @@ class OneKeyButtons(QWidget):
             (GAS_SENT, self.tr("Gas sent"), "F6"),
             (MASK, self.tr("Mask off"), "F7"),
             (CHECKED, self.tr("Checked, no change"), "F8"),
+            (TOLD, self.tr("Told"), "F9"),
         ):
             button = QPushButton(f"{word}  {shortcut}")
             button.setAccessibleName(word)

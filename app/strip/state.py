@@ -1,0 +1,14 @@
+"""What the log strip is at."""
+
+from enum import StrEnum
+
+
+class State(StrEnum):
+    """What the line under the strip says."""
+
+    IDLE = "idle"
+    AWAITED = "awaited"
+    READY = "ready"
+    ASKING = "asking"
+    REFUSED = "refused"
+    TOLD = "told"
