@@ -45,8 +45,8 @@ class WriteOn:
         for n, name in enumerate(self.names):
             left = x + (n // per) * (each + press.gap(14))
             base = y + (n % per + 1) * press.gap(self.row) - press.gap(3)
-            press.text(left, base - press.gap(9), press.gap(self.name_width), name, SMALL)
-            press.line(left + press.gap(self.name_width), base, left + each, base, 0.4, LINE)
+            press.text(left, base - press.gap(9), self.name_width, name, SMALL)
+            press.line(left + self.name_width, base, left + each, base, 0.4, LINE)
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,10 +92,12 @@ def episode_blocks() -> list[Block]:
     flags = (("Since", 8), ("What was met, with its values", 56), ("Seen or settled by", 36))
     return [
         WriteOn(FACTS, 2, 17),
+        WriteOn(("What changed",), 1, 17),
         Heading("Settings now and changes this shift"), Grid(changes, 5, 17),
         Heading("Gases"), Grid(tuple(zip(GAS_HEADINGS, shares, strict=True)), 4, 17),
         Heading("Observations"), Grid([(name, 1.0) for name in observed], 5, 17),
         Heading("Flags and what was done"), Grid(flags, 3, 17),
+        WriteOn(("Levers noted",), 1, 17),
         Heading("Due next"), Grid((("By", 10), ("What", 40), ("By", 10), ("What", 40)), 2, 17),
         Heading("Plan and care"), WriteOn(CARE, 2, 17),
     ]  # fmt: skip

@@ -23,7 +23,18 @@ def test_every_question_stands_on_the_form(qapp, paper):
     assert count == 3
     for asked in ("Shift from", "See first", "All episodes, in order of concern", "Due in the next 4 h", "Given by"):
         assert asked in ward
-    for asked in (*FACTS, *CARE, *HEADINGS, "Settings now", "Flags", "Remark", "Given by", "Taken by"):
+    for asked in (
+        *FACTS,
+        *CARE,
+        *HEADINGS,
+        "What changed",
+        "Levers noted",
+        "Settings now",
+        "Flags",
+        "Remark",
+        "Given by",
+        "Taken by",
+    ):
         assert asked in one
     assert one.replace("Page 2", "") == two.replace("Page 3", "")
     for n, text in enumerate((ward, one, two), 1):

@@ -290,8 +290,6 @@ def test_a_closed_handover_is_kept_as_it_was_printed(content: SheetContent, tmp_
 
 @pytest.mark.parametrize("paper", sorted(PAPERS))
 def test_after_a_closed_one_each_episode_still_has_one_page(night_store: Store, tmp_path: Path, paper: str) -> None:
-    night_store: Store, tmp_path: Path, paper: str
-) -> None:
     """The fullest pages of the night: every change since the last handover comes on top."""
     night_store.backup(tmp_path / "copy")
     Store.restore(tmp_path / "copy", tmp_path / "own.luff")
