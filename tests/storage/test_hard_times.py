@@ -40,7 +40,7 @@ def test_what_was_acknowledged_survives_a_kill(tmp_path: Path, secret: str | Non
 @pytest.mark.skipif(COMPILER is None or sys.platform != "linux", reason="needs a C compiler and Linux")
 @pytest.mark.parametrize("careless", [False, True])
 def test_what_was_acknowledged_survives_a_power_cut(tmp_path: Path, careless: bool) -> None:
-    """With every unsynced write gone. That the proof bites: a program that syncs nothing loses what it said it took."""
+    """With every unsynced write gone. That the proof bites: a program that syncs nothing loses what it took."""
     live, cut = tmp_path / "live", tmp_path / "cut"
     live.mkdir()
     Store.create(live / "ward.luff", now=NOW).close()
