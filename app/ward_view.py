@@ -159,6 +159,7 @@ class WardView(QWidget):
         self._order = order
         self.sort.choose(order)
         self._refresh()
+        self.lanes.show_chosen()
 
     def show_all(self) -> None:
         """Every lane: no filter, no search."""
@@ -170,6 +171,7 @@ class WardView(QWidget):
         self._shown = which
         self.filter.choose(which)
         self._refresh()
+        self.lanes.show_chosen()
 
     def select(self, key: str) -> None:
         """Show which episode is in hand; no lane is, where it is not among those shown."""
@@ -315,3 +317,4 @@ class WardView(QWidget):
 
     def _search_changed(self, text: str) -> None:  # noqa: ARG002
         self._refresh()
+        self.lanes.show_chosen()

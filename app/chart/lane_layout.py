@@ -9,8 +9,8 @@ from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.theme import Theme
 
 _LEAST_CLOCK = 420  # below this many pixels at 100 % the two columns at the right are laid one over the other
-_CLOSE = 40  # least height of a lane at 100 % where the whole ward then stands on the screen at once
-_COMFORT = 54  # least height where it has to be scrolled in any case
+_CLOSE = 40  # least height of a lane at 100 %: twelve stand on a screen of 1280 x 800 at once
+_COMFORT = 54  # least height at which marks and words have their full size
 _FOLDED = 84  # least height with the two columns one over the other
 
 
@@ -119,8 +119,8 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
 
 
 def _heights(lanes: int, least: int, theme: Theme, height: float) -> tuple[float, float, float]:
-    """Heights of heading, gap and lane. Lanes come close together where the whole ward then stands on the screen;
-    where it has to be scrolled anyway they keep their comfort. `least`: of a lane that needs more; 0 else."""
+    """Heights of heading, gap and lane. Lanes come close together where the ward does not stand on the screen in
+    comfort: the more of it is seen, the fewer are forgotten. `least`: of a lane that needs more; 0 else."""
     px, count = theme.px, max(lanes, 1)
     head, gap = float(px(36)), float(px(6))
     comfort = (height - head) / count - gap
@@ -128,10 +128,10 @@ def _heights(lanes: int, least: int, theme: Theme, height: float) -> tuple[float
     if comfort >= wanted:
         return head, gap, round(min(comfort, px(92)))
     close_head, close_gap = float(px(28)), float(px(3))
+    if least:
+        return head, gap, wanted
     close = int((height - close_head) / count - close_gap)
-    if not least and close >= px(_CLOSE):
-        return close_head, close_gap, min(close, wanted - 1)
-    return head, gap, wanted
+    return close_head, close_gap, max(min(close, wanted - 1), px(_CLOSE))
 
 
 def place_items(lane: Lane, g: LaneGeometry, theme: Theme) -> list[Placed]:

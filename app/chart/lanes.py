@@ -98,6 +98,11 @@ class WardLanes(QAbstractScrollArea):
         self._lane, self._item = NO_LANE, None
         self.viewport().update()
 
+    def show_chosen(self) -> None:
+        """Bring the chosen lane into view: lanes were sorted or filtered anew."""
+        if self._lane != NO_LANE:
+            self._bring_into_view(self._lane)
+
     def sentence_of_selection(self) -> str:
         """What is chosen, in words."""
         lane = self.selected_lane
