@@ -110,6 +110,7 @@ class SessionModel(QObject):
         self.runner = runner
         runner.committed.connect(self._committed)
         runner.failed.connect(self.failed)
+        self._is_described = False
         self._poll = QTimer(self)
         self._poll.setInterval(POLL_MS)
         self._poll.timeout.connect(self.look_for_changes)
@@ -177,7 +178,8 @@ class SessionModel(QObject):
     @Slot()
     def look_for_changes(self) -> None:
         """Ask for what was committed since the head that views have been told."""
-        self.ask(store_operations.changes, self._session.head, done=self._found, subject="changes")
+        if self._is_described:  # until then every episode that was ever closed would be news
+            self.ask(store_operations.changes, self._session.head, done=self._found, subject="changes")
 
     def _become(self, what: What, **values: Any) -> None:
         made = replace(self._session, **values)
@@ -197,6 +199,7 @@ class SessionModel(QObject):
 
     def _described(self, outcome: Outcome[store_operations.StoreFacts]) -> None:
         facts = outcome.value
+        self._is_described = True
         names_by_policy.use(facts.policy)
         self._session = replace(self._session, head=outcome.head, policy=facts.policy,
                                 read_only=facts.read_only, layout_revision=facts.layout_revision,

@@ -130,3 +130,13 @@ def test_intents_change_the_value_and_say_what(model: SessionModel, qtbot: Any) 
             intent(value)
     assert model.session.selection == "a"
     assert model.session.person == "AB"
+
+
+def test_nothing_is_looked_for_before_the_store_is_described(model: SessionModel, qtbot: Any) -> None:
+    """Else every episode that was ever closed would come as news and be read."""
+    with qtbot.assertNotEmitted(model.changed, wait=30):
+        model.look_for_changes()
+        assert not model.runner.is_busy
+    with qtbot.waitSignal(model.changed):
+        model.start()
+    assert model.session.head == 3
