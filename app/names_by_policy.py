@@ -22,6 +22,11 @@ def use(policy: Policy) -> None:
     _InForce.policy = policy
 
 
+def in_force() -> Policy:
+    """The policy whose numbers are shown: that in use, else the shipped one."""
+    return _InForce.policy or shipped_policy()
+
+
 def by_policy(key: str, name: str, policy: Policy | None = None) -> str:
     """The name of a marker with the limits of a policy (the one in use) in place of the shipped ones.
 

@@ -10,10 +10,9 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
 from app.chart.marks import draw_card, fitted, pennant, solid_pen, verdict_sign
-from app.finding_names import marker_name
 from app.formats import minutes, span
 from app.phrases import translate
-from app.statistics.measures import clock_name, measures, ordered_flags
+from app.statistics.measures import clock_name, flag_name, measures, ordered_flags
 from app.theme import Theme, Tier, Verdict, verdict_of, verdict_word
 from app.words import Reader
 from core.figures.ward_statistics import Waits, WardStatistics
@@ -45,9 +44,21 @@ def flag_bars(found: WardStatistics, reader: Reader) -> tuple[Bar, ...]:
     made = []
     for marker, count in ordered_flags(found)[:_MOST_FLAGS]:
         beside = translate("statistics", "{raised}, seen {seen}").format(raised=count.raised, seen=count.seen.known)
-        name = marker_name(marker, reader)
+        name = flag_name(marker, reader)
         made.append(Bar(name, count.raised, count.seen.known, beside, None, Tier(count.tier)))
     return tuple(made)
+
+
+def known_words(waits: Waits) -> str:
+    """Of how many a time is known, and of how many it is not.
+
+    >>> known_words(Waits(not_known=11))
+    '0 known\\n11 not known'
+    """
+    known = translate("statistics", "{count} known").format(count=waits.known)
+    if not waits.not_known:
+        return known
+    return known + "\n" + translate("statistics", "{count} not known").format(count=waits.not_known)
 
 
 class StatisticsBars(QWidget):
@@ -95,7 +106,7 @@ class StatisticsBars(QWidget):
         verdicts = verdict_bars(self._found)
         y = self._draw_bars(painter, translate("statistics", "Responses by verdict"), "", verdicts, 0, width)
         y = self._draw_waits(painter, y + px(10), width)
-        note = translate("statistics", "filled: seen")
+        note = translate("statistics", "filled: seen; * confirm locally")
         flags = flag_bars(self._found, self._reader)
         self._draw_bars(painter, translate("statistics", "Flags by marker"), note, flags, y + px(10), width)
 
@@ -179,7 +190,7 @@ class StatisticsBars(QWidget):
         """`scale`: where the line begins, and how many minutes its end stands for."""
         bar_at, longest = scale
         theme, px, c = self._theme, self._theme.px, self._theme.colours
-        end, middle = box.width() - px(64), box.top() + box.height() * 0.45
+        end, middle = box.width() - px(96), box.top() + box.height() * 0.45
         painter.setFont(theme.font(theme.type.body))
         painter.setPen(QColor(c.ink))
         name = fitted(painter, name, bar_at - px(22))
@@ -201,8 +212,8 @@ class StatisticsBars(QWidget):
             else:
                 painter.drawEllipse(at, px(4.5), px(4.5))
         painter.setPen(QColor(c.ink_quiet))
-        told = f"{waits.known}" if not waits.not_known else f"{waits.known} + {waits.not_known}?"
-        painter.drawText(QRectF(end + px(8), box.top(), px(56), box.height() * 0.9), _LEFT, told)
+        room = QRectF(end + px(8), box.top(), px(88), box.height() * 0.9)
+        painter.drawText(room, _LEFT, known_words(waits))
 
 
 @dataclass(frozen=True, slots=True)

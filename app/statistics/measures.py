@@ -7,8 +7,10 @@ import io
 from collections.abc import Iterator
 from dataclasses import dataclass
 
+from app.certainty import star_note, starred
 from app.finding_names import marker_name
-from app.formats import fixed, minutes, trimmed, wall
+from app.formats import fixed, hours, minutes, trimmed, wall
+from app.names_by_policy import in_force
 from app.phrases import translate
 from app.theme import Tier, tier_word, verdict_of, verdict_word
 from app.words import Reader
@@ -43,13 +45,13 @@ class Measure:
 
     @property
     def shown(self) -> str:
-        """The value as people read it: `3 of 5 (60 %)`, `45 min`, `31.5 h`."""
+        """The value as people read it: `3 of 5 (60 %)`, `45 min`, `31 h 30 min`."""
         if self.value is None:
-            return "-"
+            return translate("statistics", "not known")
         if self.unit == "min":
             return minutes(self.value)
         if self.unit == "h":
-            return f"{fixed(self.value, 1)} h"
+            return hours(self.value)
         if self.of is None:
             return trimmed(self.value)
         share = f" ({fixed(100 * self.value / self.of, 0)} %)" if self.of else ""
@@ -143,10 +145,16 @@ def ordered_flags(s: WardStatistics) -> list[tuple[str, FlagCount]]:
     return sorted(s.flags.items(), key=lambda x: (_TIERS.index(x[1].tier), -x[1].raised, x[0]))
 
 
+def flag_name(marker: str, reader: Reader) -> str:
+    """A marker's name, with a star where the policy in force has its threshold to be confirmed."""
+    rule = in_force().markers.get(marker)
+    return starred(marker_name(marker, reader), rule.sure if rule is not None else "")
+
+
 def _flags(s: WardStatistics, reader: Reader) -> Iterator[Measure]:
     group = translate("statistics", "Flags")
     for marker, count in ordered_flags(s):
-        name = f"{marker_name(marker, reader)} ({tier_word(Tier(count.tier))})"
+        name = f"{flag_name(marker, reader)} ({tier_word(Tier(count.tier))})"
         yield Measure(group, name, count.raised, note=_seen(count))
     if not s.flags:
         yield Measure(group, translate("statistics", "Flags raised"), 0)
@@ -158,7 +166,7 @@ def _seen(count: FlagCount) -> str:
         parts.append(translate("statistics", "seen {count}, after {time} (median)").format(
             count=count.seen.known, time=minutes(count.seen.median)))  # fmt: skip
     if count.seen.not_known:
-        parts.append(translate("statistics", "not said to be seen: {count}").format(count=count.seen.not_known))
+        parts.append(translate("statistics", "not marked seen: {count}").format(count=count.seen.not_known))
     if count.settled:
         parts.append(translate("statistics", "settled: {count}").format(count=count.settled))
     return ", ".join(parts)
@@ -174,7 +182,7 @@ def as_text(found: WardStatistics, reader: Reader) -> str:
             group = m.group
             lines += ["", group]
         lines.append(f"  {m.name}: {m.shown}" + "".join(f"; {x}" for x in (m.note, m.source) if x))
-    return "\n".join(lines)
+    return "\n".join([*lines, "", star_note()])
 
 
 def as_csv(found: WardStatistics, reader: Reader) -> str:
