@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtPrintSupport import QPrinter, QPrintPreviewDialog
-from PySide6.QtWidgets import QWidget
+from PySide6.QtWidgets import QToolBar, QToolButton, QWidget
 
 from app.sheet.printing import paint, set_paper
 from app.sheet.shapes import SheetContent
@@ -26,7 +26,17 @@ class HandoverPreview(QPrintPreviewDialog):
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.setWindowTitle(f"{content.ward.title}, {content.ward.shift}")
         self.paintRequested.connect(self.print_on)
-        self.resize(1000, 760)
+        self.resize(1180, 800)
+        self._dress_bar()
+
+    def _dress_bar(self) -> None:
+        """Small buttons, so that the last ones are in sight: they set the page up and print, and say so in words."""
+        for bar in self.findChildren(QToolBar):
+            bar.setStyleSheet("QToolButton { padding: 3px; min-width: 0; }")
+            for action in bar.actions()[-2:]:
+                button = bar.widgetForAction(action)
+                if isinstance(button, QToolButton):
+                    button.setToolButtonStyle(Qt.ToolButtonStyle.ToolButtonTextBesideIcon)
 
     def print_on(self, printer: QPrinter) -> None:
         """Paint every page on a printer or into the preview; say so where the printer takes nothing."""

@@ -7,6 +7,7 @@ import pytest
 from pypdf import PdfReader
 from PySide6.QtCore import Qt
 from PySide6.QtPrintSupport import QPrinter
+from PySide6.QtWidgets import QToolBar
 
 from app.dialogs.print_preview import HandoverPreview
 from app.operations import handover, handover_sheet
@@ -152,3 +153,19 @@ def test_stopped_at_any_report_there_is_no_file_and_nothing_in_the_chain(qapp, t
         assert told[:2] == [(0, 2), (1, 2)][: at + 1], "two episodes gathered, then three pages"
         assert handover_sheet.write(store, "AB", NOW, request_of(tmp_path / "x.pdf")).value == 3
         assert store.head() > head
+
+
+def test_page_setup_and_print_are_in_sight_in_the_preview(qtbot, window):
+    with Store.open(window.model.session.store_path) as store:
+        made = handover.prepare(store, "AB", NOW, window.doers.ward.handover_request()).value
+    preview = HandoverPreview(sheet_content(made, window.reader), window)
+    preview.show()
+    qtbot.waitExposed(preview)
+    (bar,) = preview.findChildren(QToolBar)
+    for action in bar.actions()[-2:]:
+        button = bar.widgetForAction(action)
+        assert button.isVisible()
+        assert bar.rect().contains(button.geometry())
+        assert button.text()
+    assert preview.pages == 3
+    preview.close()
