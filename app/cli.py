@@ -115,6 +115,10 @@ def _recording(command: Command) -> None:
     what.add_argument("--value", help="the right value")
     what.add_argument("--withdraw", action="store_true", help="the entry must not count")
     what.add_argument("--move-to", metavar="EPISODE", help="the entry belongs to another episode")
+    what.add_argument("--leave-out", metavar="CHANNELS", help="device samples that do not count; with --span")
+    what.add_argument("--move-by", metavar="CHANNELS:MIN",
+                      help="device samples that belong so many minutes later; with --span")  # fmt: skip
+    correct.add_argument("--span", nargs=2, type=moment, metavar=("FROM", "TO"), help="which device samples")
     correct.add_argument("--unit", default="", help="the unit of --value")
     correct.add_argument("--at", type=moment, metavar="T", help="the right time")
     correct.add_argument("--reason", default="", help="why")
@@ -211,7 +215,12 @@ def _keeping(command: Command) -> None:
     mapping.add_argument("--name", default="", help="the name to keep it by")
     archive = command("archive", "ended episodes: list, copy into an archive, remove after the retention time")
     archive.add_argument("what", choices=("list", "write", "remove", "retention"))
-    archive.add_argument("subjects", nargs="*", help="write: FILE EPISODE...; remove: EPISODE...; retention: DAYS")
+    archive.add_argument(
+        "subjects",
+        nargs="*",
+        help="write: FILE EPISODE...; remove: EPISODE... (none: closed handovers past their time alone); "
+        "retention: DAYS",
+    )
     people = command("people", "who may sign in: list, add, retire, give a new PIN")
     people.add_argument("what", choices=("list", "add", "retire", "pin"))
     people.add_argument("initials", nargs="?", default="", help="whom it concerns")

@@ -25,6 +25,10 @@ SHORT_ID = 8
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Supersede one entry with a reason, or list the episode's entries."""
+    if args.leave_out is not None or args.move_by is not None:
+        from app.commands import device_span
+
+        return device_span.run(context, args)
     reader = context.reader()
     wanted = sum((args.value is not None or args.at is not None, args.withdraw, args.move_to is not None))
     if args.entry is not None and wanted != 1:

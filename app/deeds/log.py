@@ -127,3 +127,16 @@ class LogDeeds(FormDeeds):
         )
         dialog.recorded.connect(self.strip.remember)
         dialog.open()
+
+    def do_device_span(self) -> None:
+        """Leave out or move a span of device samples of this patient."""
+        from app.dialogs.device_span import DeviceSpanDialog
+
+        key = self.model.session.selection
+        if key is None:
+            return
+        dialog = DeviceSpanDialog(
+            self.model, key, self.strip.whom.text(), self.window.reader, self.window.theme, self.window
+        )
+        dialog.recorded.connect(self.strip.remember)
+        dialog.open()

@@ -127,5 +127,8 @@ def label_beside(text: str, field: QWidget) -> QLabel:
     label = QLabel(text)
     label.setBuddy(field)
     field.ensurePolished()
-    label.setMinimumHeight(field.sizeHint().height())
+    height = min(field.sizeHint().height(), field.maximumHeight())
+    if height > 2 * label.sizeHint().height() + field.fontMetrics().height():  # a list: its name stands at its top
+        label.setAlignment(Qt.AlignmentFlag.AlignTop)
+    label.setMinimumHeight(height)
     return label

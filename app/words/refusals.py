@@ -10,6 +10,10 @@ TEMPLATES: Final[dict[str, str]] = {
     "correction.same_episode": "The entry is in {episode} already. Name {accepted}.",
     "correction.superseded": "This {channel:name} has been superseded meanwhile. Correct {accepted}.",
     "correction.unknown_entry": "Entry {entry} is not one that can be corrected here. Name {accepted}.",
+    "device.into_the_future": "Moved so, samples would lie ahead of the clock. Accepted: {accepted}.",
+    "device.moved_too_far": "A clock cannot be off by {value} minutes. Accepted: up to {accepted} minutes, not 0.",
+    "device.no_channel": "No channel was named. Accepted: {accepted}.",
+    "device.nothing_there": "No sample of these channels lies in that span. Accepted: {accepted}.",
     "document.damaged": "Document {value} is not what was kept: its digest does not fit.",
     "document.unknown": "There is no document {value} in the store.",
     "doubt.after_the_end":
