@@ -130,7 +130,7 @@ class LaneWords:
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
-        return indication_word(str(indication)) if indication else translate("ward", "indication not recorded")
+        return indication_word(str(indication)) if indication else translate("ward", "Indication not recorded")
 
     def _due_word(self, due: DueFigure | None) -> str:
         if due is None:
@@ -213,9 +213,10 @@ class LaneWords:
                 yield self._flag_item(flag)
 
     def _moves(self, moves: tuple[Move, ...]) -> Iterator[LaneItem]:
-        """Each move as a tick of its own, with where the patient came from."""
+        """Each move as a tick of its own, with where the patient came from; the newest bed stands under the title."""
+        newest = next((m for m in reversed(moves) if m.channel == "label"), None)
         for move in moves:
-            word = translate("ward", "from {before}").format(before=move.before)
+            word = "" if move is newest else translate("ward", "from {before}").format(before=move.before)
             yield LaneItem(LaneKind.SETTING, move.at, move_sentence(move, self.zone), word=word, payload=move)
 
     def _gas_item(

@@ -45,7 +45,7 @@ def test_hovering_tells_in_words(ward, qtbot, lanes_spec):
     ward.hovered.connect(heard.append)
     qtbot.mouseMove(ward.viewport(), point_of(ward, lanes_spec.lanes[0].items[0]))
     qtbot.waitUntil(lambda: heard == ["gas at 30"])
-    qtbot.mouseMove(ward.viewport(), QPoint(20, 70))
+    qtbot.mouseMove(ward.viewport(), QPoint(20, 60))
     qtbot.waitUntil(lambda: heard == ["gas at 30", "Bed 1 in words"])
 
 

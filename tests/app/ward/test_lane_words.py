@@ -132,7 +132,7 @@ def test_an_episode_with_nothing_but_a_label_still_has_a_lane():
     assert lane.state is None
     assert lane.state_word == "no gas yet"
     assert lane.due_word == "nothing due"
-    assert "indication not recorded" in lane.subtitle
+    assert "Indication not recorded" in lane.subtitle
 
 
 @pytest.mark.parametrize("bed", ward(), ids=lambda b: b.figures.label)

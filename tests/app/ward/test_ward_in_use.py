@@ -62,7 +62,7 @@ def test_a_bed_move_shows_and_a_corrected_label_is_none(qtbot, window):
     until(qtbot, lambda: lane(window, "bed-7").title == "Bed 12")
     ticks = [i for i in lane(window, "bed-7").items if i.kind is LaneKind.SETTING and "moved" in i.sentence]
     assert [i.sentence for i in ticks] == ["04:45 moved from Bed 7 to Bed 12"]
-    assert ticks[0].word == "from Bed 7"
+    assert ticks[0].word == ""  # said under the title: the settings' words are left in sight
     assert window.strip.whom.text() == "Bed 12"
     assert lane(window, "bed-7").subtitle == "COPD, from Bed 7 04:45"
     for typed in ("bed 12", "Bed 7"):  # where the patient is, and where the patient was
