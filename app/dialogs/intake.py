@@ -6,7 +6,7 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QElapsedTimer, Signal
+from PySide6.QtCore import QElapsedTimer, QTimer, Signal
 from PySide6.QtWidgets import QCheckBox, QProgressBar, QWidget
 
 from app.dialogs.asking import AskingDialog
@@ -68,6 +68,8 @@ class IntakeDialog(AskingDialog):
         self.body.addWidget(self.patients)
         self.body.addWidget(self.codes)
         self.body.addWidget(self.leave_out)
+        self.body.setStretchFactor(self.table, 100)
+        self.body.addStretch(1)  # while there is no table, the bar stays under its words
         self.table.hide()
         self.resize(theme.px(900), theme.px(560))
         self.go.setEnabled(False)
@@ -81,7 +83,7 @@ class IntakeDialog(AskingDialog):
         """Read the file with all that was said of it."""
         self.bar.show()
         self.bar.setRange(0, 0)
-        self.left.clear()
+        self._tell_left("")
         self._clock.start()
         self._number = self._model.ask(intake_operations.read, self._request, done=self._read, failed=self._failed)
 
@@ -117,7 +119,11 @@ class IntakeDialog(AskingDialog):
         if progress.number == self._number:
             self.bar.setRange(0, progress.total)
             self.bar.setValue(progress.done)
-            self.left.setText(self._time_left(progress))
+            self._tell_left(self._time_left(progress))
+
+    def _tell_left(self, text: str) -> None:
+        self.left.setText(text)
+        self.left.setVisible(bool(text))
 
     def _time_left(self, progress: Progress) -> str:
         """How long it will still take, once that can be told."""
@@ -130,7 +136,7 @@ class IntakeDialog(AskingDialog):
     def _read(self, outcome: Outcome[Intake]) -> None:
         self.intake = outcome.value
         self.bar.hide()
-        self.left.clear()
+        self._tell_left("")
         self.summary.setText(self.words(outcome.value))
         self.patients.show_unknown(outcome.value.unknown_patients, self._request.episodes)
         self.codes.setEnabled(True)
@@ -144,38 +150,30 @@ class IntakeDialog(AskingDialog):
         self.leave_out.setChecked(False)
         self.leave_out.setVisible(bool(outcome.value.refusals) and outcome.value.whole)
         self._allow()
-        self.grow()
         self.go.setFocus()
+        QTimer.singleShot(0, self.grow)  # once what was just shown has its height
 
     def words(self, intake: Intake) -> str:
         """The file in a few sentences."""
-        parts = [
-            self.tr("{name}: {entries} entries and {samples} device samples for {episodes} episodes.").format(
-                name=self._path.name,
-                entries=len(intake.entries),
-                samples=intake.sample_count,
-                episodes=len(intake.episodes),
-            )
-        ]
-        if intake.repeated_in_store:
-            parts.append(
-                self.tr("{count} rows are in the store already and are skipped.").format(
-                    count=intake.repeated_in_store
-                )
-            )
-        if intake.doubts:
-            parts.append(
-                self.tr("{count} rows are in doubt: they are taken and marked.").format(count=len(intake.doubts))
-            )
-        if intake.aside_count:
-            text = self.tr("{count} values are of no channel here or have no value: they are left aside.")
-            parts.append(text.format(count=intake.aside_count))
-        if intake.refusals:
-            parts.append(
-                self.tr("{count} rows are refused: the file is taken whole or not at all.").format(
-                    count=intake.refused_rows
-                )
-            )
+        of = _counted(len(intake.episodes), self.tr("1 episode"), self.tr("{count} episodes"))
+        brought = [_counted(len(intake.entries), self.tr("1 entry"), self.tr("{count} entries"))]
+        if intake.sample_count:
+            text = self.tr("{count} device samples")
+            brought.append(_counted(intake.sample_count, self.tr("1 device sample"), text))
+        told = self.tr("{name}: {brought} for {episodes}.")
+        joined = self.tr(" and ").join(brought)
+        parts = [told.format(name=self._path.name, brought=joined, episodes=of)]
+        counts = (
+            (intake.repeated_in_store, self.tr("1 row is in the store already and is skipped."),
+             self.tr("{count} rows are in the store already and are skipped.")),
+            (len(intake.doubts), self.tr("1 row is in doubt: it is taken and marked."),
+             self.tr("{count} rows are in doubt: they are taken and marked.")),
+            (intake.aside_count, self.tr("1 value is of no channel here or has no value: it is left aside."),
+             self.tr("{count} values are of no channel here or have no value: they are left aside.")),
+            (intake.refused_rows, self.tr("1 row is refused: the file is taken whole or not at all."),
+             self.tr("{count} rows are refused: the file is taken whole or not at all.")),
+        )  # fmt: skip
+        parts += [_counted(count, one, many) for count, one, many in counts if count]
         if not intake.whole:
             parts.append(self.tr("It could not be read to its end, so nothing of it can be taken."))
         if not intake.refusals and intake.whole and not intake.entries and not intake.sample_count:
@@ -220,3 +218,7 @@ class IntakeDialog(AskingDialog):
         self.bar.hide()
         self.refuse(sentence(failure.message, self._reader))
         self.go.setEnabled(False)
+
+
+def _counted(count: int, one: str, many: str) -> str:
+    return one if count == 1 else many.format(count=f"{count:,}")

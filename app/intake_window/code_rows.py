@@ -12,6 +12,7 @@ from app import formats
 from app.intake_window.column_table import NoWheel, fill_channels
 from app.plain_label import plain_label
 from app.theme import Theme
+from storage.codes import LOINC
 
 if TYPE_CHECKING:
     from storage.intake.findings import UnknownCode
@@ -19,6 +20,9 @@ if TYPE_CHECKING:
 MOST = 6
 """Codes asked for at a time; the next ones follow when these are answered."""
 _OPEN = "?"
+_SYSTEMS = {LOINC: "LOINC", "http://snomed.info/sct": "SNOMED CT"}
+_SHORT = 12
+"""Letters of a system's name that are shown; a longer one stands in the tip."""
 
 
 class CodeRows(QWidget):
@@ -63,6 +67,10 @@ class CodeRows(QWidget):
         self.keep.setProperty("role", "small")
         self.keep.setEnabled(False)
         self.keep.clicked.connect(self._tell)
+        none = QPushButton(self.tr("None of them is wanted"))
+        none.setProperty("role", "small")
+        none.clicked.connect(self._want_none)
+        self._grid.addWidget(none, len(shown) + 1, 1)
         self._grid.addWidget(self.keep, len(shown) + 1, 2)
 
     def _head(self, more: int) -> str:
@@ -70,7 +78,10 @@ class CodeRows(QWidget):
         return text + self.tr(" {count} more follow.").format(count=more) if more else text
 
     def _add(self, row: int, code: UnknownCode) -> None:
-        name = plain_label(f"{code.name} ({code.key})" if code.name != code.key else code.key)
+        system, mark, plain = code.key.rpartition("|")
+        told = f"{_SYSTEMS.get(system, system if len(system) <= _SHORT else '')} {plain}".strip() if mark else plain
+        name = plain_label(f"{code.name} ({told})" if code.name not in (told, plain) else told)
+        name.setToolTip(formats.inert(code.key))
         name.setWordWrap(True)
         sent = formats.with_unit(code.example, code.unit)
         text = self.tr("e.g. {value}, sent once") if code.count == 1 else self.tr("e.g. {value}, sent {count} times")
@@ -87,6 +98,12 @@ class CodeRows(QWidget):
         for column, widget in enumerate((name, example, box)):
             self._grid.addWidget(widget, row, column)
         self.boxes[code.key] = box
+
+    def _want_none(self) -> None:
+        """Every code that is shown is set to 'not wanted'; it still has to be kept by a press."""
+        for box in self.boxes.values():
+            box.setCurrentIndex(box.findData(""))
+        self._answered()
 
     @property
     def answers(self) -> dict[str, str]:

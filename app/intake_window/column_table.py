@@ -24,6 +24,7 @@ from core.record.message import Message
 from storage.intake.mapping import ColumnUse
 
 _SHOWN = 3
+_LETTERS = 24
 _GROUPS = (Group.GAS, Group.VITAL, Group.SETTING, Group.DEVICE, Group.EVENT, Group.PROFILE)
 
 
@@ -68,8 +69,9 @@ class ColumnTable(QTableWidget):
         head = self.horizontalHeader()
         for column, mode in enumerate(("Interactive", "Interactive", "Fixed", "Fixed", "Stretch")):
             head.setSectionResizeMode(column, QHeaderView.ResizeMode[mode])
-        for column, width in enumerate((130, 130, 228, 124)):
+        for column, width in enumerate((120, 122, 234, 136)):
             self.setColumnWidth(column, theme.px(width))
+        head.sectionResized.connect(self._fit_all)
 
     def show_rows(
         self, rows: Sequence[tuple[str, Sequence[str]]], uses: dict[str, ColumnUse], taken: dict[str, str],
@@ -80,9 +82,11 @@ class ColumnTable(QTableWidget):
         self._channels, self._units = [], []
         self.setRowCount(len(rows))
         for row, (name, values) in enumerate(rows):
-            first = ", ".join(dict.fromkeys(values[: _SHOWN * 2]))
+            first = list(dict.fromkeys(values))[: _SHOWN * 2]
             self.setItem(row, 0, QTableWidgetItem(name))
-            self.setItem(row, 1, QTableWidgetItem(first[:80]))
+            item = QTableWidgetItem(_as_fit(first))
+            item.setToolTip(inert(", ".join(first)[:400]))
+            self.setItem(row, 1, item)
             use = uses.get(name, ColumnUse(name))
             channels, units = self._channel_box(name, use), QComboBox()
             units.setAccessibleName(self.tr("Unit of {column}").format(column=name))
@@ -115,6 +119,17 @@ class ColumnTable(QTableWidget):
         item.setForeground(self._theme.colour("accent"))
         item.setToolTip(inert(text))
         self.setItem(row, 4, item)
+        self._fit(row)
+
+    def _fit(self, row: int) -> None:
+        """A row tall enough for its words."""
+        self.resizeRowToContents(row)
+        self.setRowHeight(row, max(self.rowHeight(row), self._theme.px(50)))
+
+    def _fit_all(self, column: int, *_: int) -> None:
+        if column == self.columnCount() - 1:
+            for row in range(self.rowCount()):
+                self._fit(row)
 
     def _channel_box(self, name: str, use: ColumnUse) -> QComboBox:
         box = QComboBox()
@@ -158,6 +173,16 @@ class ColumnTable(QTableWidget):
         """The choice of a column's channel, or of its unit."""
         row = next(r for r in range(self.rowCount()) if (i := self.item(r, 0)) is not None and i.text() == column)
         return (self._units if unit else self._channels)[row]
+
+
+def _as_fit(values: Sequence[str]) -> str:
+    """As many values as fit two short lines, the first always."""
+    shown = values[0][:_LETTERS] if values else ""
+    for value in values[1:]:
+        if len(shown) + len(value) > _LETTERS:
+            return f"{shown}, \N{HORIZONTAL ELLIPSIS}"
+        shown += f", {value}"
+    return shown
 
 
 def fill_channels(box: QComboBox) -> None:

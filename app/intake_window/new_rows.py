@@ -39,4 +39,4 @@ def _value(e: NewEntry) -> str:
     if e.number is not None and not e.raw:
         return formats.trimmed(e.number)
     unit = "" if e.raw_unit in ("pH", "points", "fraction") else e.raw_unit
-    return formats.with_unit(e.raw, unit)
+    return formats.with_unit(e.raw if e.number is None else e.raw.replace(",", "."), unit)

@@ -53,6 +53,8 @@ class TakenDialog(FittedDialog):
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
+        self.table.setWordWrap(True)
+        self.table.horizontalHeader().sectionResized.connect(self._fit_rows)
         for column in range(5):
             self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
         self.table.horizontalHeader().setSectionResizeMode(5, QHeaderView.ResizeMode.Stretch)
@@ -90,14 +92,22 @@ class TakenDialog(FittedDialog):
                 item.setToolTip(text)
                 item.setData(_KEY, "" if s.id in gone else s.id)
                 self.table.setItem(row, column, item)
+        self.table.resizeRowsToContents()
         self._chosen()
+
+    def _fit_rows(self, column: int, *_: int) -> None:
+        """What a reading was told wraps: rows follow the width that the last column gets."""
+        if column == self.table.columnCount() - 1:
+            self.table.resizeRowsToContents()
 
     def _how(self, s: TakenSource) -> str:
         """The facts of a reading that matter to a person."""
-        shown = {"mapping": self.tr("mapping"), "zone": self.tr("zone"), "clock_shift_s": self.tr("times shifted, s"),
-                 "leak_definition": self.tr("leak is"), "left_out_rows": self.tr("rows left out"),
-                 "encoding": self.tr("text in"), "sheet": self.tr("sheet")}  # fmt: skip
-        parts = [f"{word} {s.facts[key]}" for key, word in shown.items() if s.facts.get(key)]
+        shown = {"mapping": self.tr("mapping {value}"), "zone": self.tr("zone {value}"),
+                 "clock_shift_s": self.tr("times shifted by {value} s"),
+                 "leak_definition": self.tr("leak is {value}"),
+                 "left_out_rows": self.tr("rows left out {value}"), "encoding": self.tr("text in {value}"),
+                 "sheet": self.tr("sheet {value}")}  # fmt: skip
+        parts = [text.format(value=_plain(s.facts[key])) for key, text in shown.items() if s.facts.get(key)]
         kinds = {"log_csv": self.tr("log file"), "table": self.tr("table"), "hl7v2": "HL7 v2", "fhir": "FHIR"}
         return ", ".join([kinds.get(s.kind, s.kind), *parts])
 
@@ -136,3 +146,7 @@ class TakenDialog(FittedDialog):
 
     def _failed(self, failure: Failure) -> None:
         self.said.setText(sentence(failure.message, self._reader))
+
+
+def _plain(value: object) -> str:
+    return f"{value:g}" if isinstance(value, float) else str(value)

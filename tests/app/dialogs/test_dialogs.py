@@ -43,7 +43,7 @@ def test_a_clean_file_is_shown_and_then_taken(qtbot, window, tmp_path):
     dialog = window.doers.file.take_in(write(tmp_path, GOOD + DOUBT))
     until(qtbot, lambda: dialog.intake is not None)
     assert "3 entries" in dialog.summary.text()
-    assert "1 rows are in doubt" in dialog.summary.text()
+    assert "1 row is in doubt" in dialog.summary.text()
     assert window.model.session.head == head
     assert dialog.go.isEnabled()
     dialog.go.click()
@@ -134,6 +134,26 @@ def test_a_value_is_corrected_with_a_reason_shown_so_and_undone(qtbot, window):
     assert any("corrected" in i.sentence for i in lane.items)
     window.actions_by_key["undo"].trigger()
     until(qtbot, lambda: ph_of(window) == 7.24)
+
+
+def test_the_right_time_is_on_the_night_of_the_entry_and_a_gas_is_held_against_itself(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "PaCO2", "71")
+    dialog.reason.setText("read wrong")
+    dialog.time.setText("25:00")
+    dialog.go.click()
+    assert "25:00" in dialog.wrong.text()
+    dialog.time.setText("03:06")
+    dialog.value.setText("12 mmHg")  # hardly possible: a figure in kPa
+    dialog.go.click()
+    until(qtbot, lambda: "kPa" in dialog.wrong.text())
+    assert "'Record it' again says yes" in dialog.wrong.text()
+    dialog.value.setText("69 mmHg")
+    assert dialog.wrong.text() == ""  # the yes was for what stood there
+    dialog.go.click()
+    until(qtbot, lambda: window.feed.answers["bed-7"].record.latest("paco2") == 69)
+    corrected = [s.entry for s in window.feed.answers["bed-7"].record.standing if s.corrected]
+    assert [(e.channel, e.at) for e in corrected] == [("paco2", NOW - 144 * 60_000_000)]
 
 
 def test_a_value_is_withdrawn(qtbot, window):

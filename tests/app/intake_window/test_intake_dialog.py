@@ -156,7 +156,7 @@ def test_what_another_window_recorded_meanwhile_is_looked_at_before_anything_is_
     dialog.go.click()
     until(qtbot, lambda: dialog.intake is not first)
     assert "read again" in dialog.wrong.text()
-    assert "1 rows are in the store already" in dialog.summary.text()
+    assert "1 row is in the store already" in dialog.summary.text()
     assert not dialog.go.isEnabled(), "there is nothing left to take"
     dialog.reject()
     with Store.open(tmp_path / "ward.luffmark") as store:
