@@ -174,6 +174,7 @@ def _printing(command: Command) -> None:
     picture.add_argument("--what", choices=("panels", "map", "compare"), default="panels")
     picture.add_argument("--out", type=Path, required=True, metavar="FILE", help=".png, .svg or .pdf")
     _may_replace(picture)
+    picture.add_argument("--panels", default="", metavar="NAME", help="a set of panels by name, or its .toml file")
     picture.add_argument("--size", type=size, metavar="WxH", help="in pixels of 1/96 inch (1280x800)")
     picture.add_argument("--theme", choices=("light", "dark"), default="light")
     _moments(picture)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import argparse
 import sys
 from dataclasses import replace
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.commands.context import Context, remark
@@ -16,9 +17,11 @@ from app.operations import policy as policies
 from app.picture import SUFFIXES, Picture, write_picture
 from app.whole_file import claim
 from core.record.instant import HOUR, Instant
+from core.record.message import refuse
 
 if TYPE_CHECKING:
     from app.episode_shown import EpisodeOnScreen
+    from app.panels import PanelSet
     from app.theme import Theme
     from storage.store import Store
 
@@ -34,6 +37,9 @@ def run(context: Context, args: argparse.Namespace) -> int:
         wanted = "two to eight episodes" if args.what == "compare" else "one episode"
         print(f"luffmark: picture --what {args.what} needs {wanted}", file=sys.stderr)
         return 2
+    if args.panels and args.what != "panels":
+        print(f"luffmark: picture --what {args.what} has no panels to choose", file=sys.stderr)
+        return 2
     claim(args.out, replace=args.replace)
     from app.off_screen import gui_application
     from app.theme import THEMES
@@ -42,7 +48,10 @@ def run(context: Context, args: argparse.Namespace) -> int:
         as_of = _moment(context, store, args) if args.as_of is None else args.as_of
         requests = [operations.EpisodeRequest(key, as_of, args.as_known_at) for key in args.episode]
         theme = THEMES[args.theme]
-        picture = _MADE[args.what](context, store, requests, theme)
+        if args.panels:
+            picture = _panels(context, store, requests, theme, _named(context, store, args.panels))
+        else:
+            picture = _MADE[args.what](context, store, requests, theme)
         write_picture(picture if args.size is None else replace(picture, size=args.size), theme, args.out)
     context.answer(f"{args.out}", {"file": str(args.out), "what": args.what, "episodes": args.episode})
     return 0
@@ -65,10 +74,13 @@ def _moment(context: Context, store: Store, args: argparse.Namespace) -> Instant
     return newest
 
 
-def _panels(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
+def _panels(
+    context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme,
+    chosen: PanelSet | None = None,
+) -> Picture:  # fmt: skip
     from app.episode.stack_words import stack_of
 
-    shown = _shown(context, store, requests[0])
+    shown = _shown(context, store, requests[0], chosen)
     return Picture(stack_of(shown, requests[0].as_of), shown.figures.label)
 
 
@@ -95,7 +107,28 @@ def _compare(context: Context, store: Store, requests: list[operations.EpisodeRe
 _MADE = {"panels": _panels, "map": _map, "compare": _compare}
 
 
-def _shown(context: Context, store: Store, request: operations.EpisodeRequest) -> EpisodeOnScreen:
+def _named(context: Context, store: Store, name: str) -> PanelSet:
+    """The panels of a file as the window saves them, or the set that the store keeps under a name.
+
+    Raises:
+        RecordError: `panel.no_set`, or what is wrong with the file.
+        OSError: the file cannot be read.
+    """
+    from app.panels import from_json, from_toml
+
+    if name.endswith(".toml"):
+        return from_toml(Path(name).read_text("utf-8"))
+    layouts = panels.load(store, context.by, context.now(), None).value
+    sets = {key.removeprefix("panelset."): text for key, text in layouts.items() if key.startswith("panelset.")}
+    if name not in sets:
+        raise refuse("panel.no_set", name=name, accepted=", ".join(sorted(sets)) or "a .toml file of panels")
+    return from_json(sets[name])
+
+
+def _shown(
+    context: Context, store: Store, request: operations.EpisodeRequest, chosen: PanelSet | None = None
+) -> EpisodeOnScreen:
+    """What the window would show; `chosen` panels, or those kept for its indication, its kind, or shipped."""
     from app.course import course_of
     from app.episode_feed import shipped_titles
     from app.episode_shown import EpisodeOnScreen
@@ -103,10 +136,12 @@ def _shown(context: Context, store: Store, request: operations.EpisodeRequest) -
 
     now = context.now()
     answer = operations.of_episode(store, context.by, now, request).value
-    indication = answer.figures.profile.get("indication")
-    family = family_of(str(indication) if indication else None)
-    kept = panels.load(store, context.by, now, None).value.get(f"panels.{family}")
-    chosen = from_json(kept) if kept else shipped(family, shipped_titles())
+    indication = str(answer.figures.profile.get("indication") or "")
+    family = family_of(indication or None)
+    layouts = panels.load(store, context.by, now, None).value
+    if chosen is None:
+        kept = layouts.get(f"panels.{indication}") or layouts.get(f"panels.{family}")
+        chosen = from_json(kept) if kept else shipped(family, shipped_titles())
     course = course_of(answer.record.until(request.as_of), request.as_of)
     policy = policies.in_force(store)
     return EpisodeOnScreen(

@@ -98,6 +98,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "panel.format_newer": "The panels are of format {format}, newer than this program reads ({accepted}).",
     "panel.last": "The last panel stays.",
     "panel.no_name": "A panel needs {accepted}.",
+    "panel.no_set": "There is no set of panels called '{name}'. Accepted: {accepted}.",
     "panel.too_many": "{count} panels are too many; at most {accepted} are accepted.",
     "panel.too_many_channels": "Panel '{title}' has {count} channels; at most {accepted} are accepted.",
     "panel.too_many_units": "Panel '{title}' has channels in {units}. Accepted: {accepted}.",
