@@ -21,6 +21,7 @@ from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
 from app.formats import quantity, wall
+from app.forms.typed_time import typed_near
 from app.operations import correction
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
@@ -33,7 +34,7 @@ from core.record.channels import CHANNELS, Kind
 from core.record.entries import Entry
 from core.record.episode import Episode
 from core.record.instant import Instant
-from core.record.local_time import latest_wall_time, local
+from core.record.local_time import local
 from core.record.message import Message, RecordError
 
 _ENTRY = Qt.ItemDataRole.UserRole
@@ -107,11 +108,13 @@ class CorrectDialog(AskingDialog):
             self.to.addItem(label, key)
         self.field(self.tr("What to do"), self.act)
         self.field(self.tr("Right value, with unit"), self.value)
-        self.field(self.tr("Right time, HH:MM"), self.time)
+        self.field(self.tr("Right time"), self.time)
         self.to.setPlaceholderText(self.tr("Choose the right patient"))
         self.to.setCurrentIndex(-1)
         self.field(self.tr("Right patient"), self.to)
         self.field(self.tr("Reason"), self.reason)
+        self.time.setPlaceholderText(self.tr("14:20, second 01:30, 20m ago"))
+        self.time.setToolTip(self.tr("The nearest such time to the one it was logged for"))
         self.act.currentIndexChanged.connect(self._act_chosen)
         for edited in (self.value, self.time):
             edited.textChanged.connect(self._changed)
@@ -225,10 +228,7 @@ class CorrectDialog(AskingDialog):
         text = self.time.text().strip()
         if text == f"{local(found.at, self._reader.zone):%H:%M}":
             return None
-        hour, _, minute = text.partition(":")
-        if not (hour.isdigit() and minute.isdigit()):
-            hour, minute = "99", "99"
-        return latest_wall_time(int(hour), int(minute), now=self._model.session.now(), zone=self._reader.zone)
+        return typed_near(text, found.at, self._model.session.now(), self._reader.zone)
 
     def _done(self, outcome: Outcome[Recorded]) -> None:
         self.recorded.emit(outcome.value)

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+import re
+
 from core.record.instant import Instant
-from core.record.local_time import zoned_iso
+from core.record.local_time import wall_time_near, zoned_iso
 from core.record.log_line import read_line
 from core.record.settings import NO_SETTINGS
+
+_WALL = re.compile(r"(?:(first|second)\s+)?(\d{1,2}):(\d{2})", re.IGNORECASE)
 
 
 def typed_time(text: str, now: Instant, zone: str) -> Instant | None:
@@ -17,6 +21,20 @@ def typed_time(text: str, now: Instant, zone: str) -> Instant | None:
     if not text.strip():
         return None
     return read_line(f"{text} checked no change", now=now, zone=zone, in_force=NO_SETTINGS).at
+
+
+def typed_near(text: str, near: Instant, now: Instant, zone: str) -> Instant | None:
+    """The moment that is typed for something logged `near` it: a bare time of day is the nearest such, on whatever
+    day; first or second 01:30 tells an hour that came twice. None where nothing is typed.
+
+    Raises:
+        RecordError: as `typed_time`.
+    """
+    match = _WALL.fullmatch(text.strip())
+    if match is None:
+        return typed_time(text, now, zone)
+    which, hour, minute = (match[1] or "").lower(), int(match[2]), int(match[3])
+    return wall_time_near(hour, minute, near=near, now=now, zone=zone, which=which)
 
 
 def typed_iso(text: str, now: Instant, zone: str) -> str:

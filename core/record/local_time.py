@@ -77,6 +77,32 @@ def latest_wall_time(
     raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
 
 
+def wall_time_near(hour: int, minute: int, *, near: Instant, now: Instant, zone: str, which: str = "") -> Instant:
+    """The moment nearest to another at which the wall clock showed the time, e.g. the right time of an entry.
+
+    Raises:
+        RecordError: `time.unreadable`, `time.not_yet`, `time.skipped`, `time.repeated` as `latest_wall_time`.
+
+    >>> from core.record.instant import parse, iso
+    >>> midnight, now = parse("2026-03-28T00:10:00+00:00"), parse("2026-03-30T08:00:00+00:00")
+    >>> iso(wall_time_near(23, 50, near=midnight, now=now, zone="UTC"))
+    '2026-03-27T23:50:00+00:00'
+    """
+    shown = f"{hour:02d}:{minute:02d}"
+    if not (0 <= hour <= 23 and 0 <= minute <= 59):
+        raise refuse("time.unreadable", value=shown, accepted="00:00 to 23:59")
+    day = local(near, zone).date()
+    days = [candidates(day + timedelta(days=n), time(hour, minute), zone) for n in (-1, 0, 1)]
+    shows = [found for found in days if found]
+    if not shows:
+        raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
+    nearest = min(shows, key=lambda found: min(abs(t - near) for t in found))
+    past = [t for t in nearest if t <= now + LEAD]
+    if not past:
+        raise refuse("time.not_yet", value=shown, at=nearest[0], accepted=f"a time up to now, or: yesterday {shown}")
+    return _chosen(past, which, shown)
+
+
 def check_not_future(at: Instant, now: Instant) -> None:
     """Refuse a moment that leads the clock by more than clocks on a ward differ.
 

@@ -11,7 +11,7 @@ from app.dialogs.panel_editor import PanelEditor
 from app.dialogs.sign_in import SignInDialog
 from app.dialogs.table import TableDialog
 from app.theme import LIGHT
-from tests.support.open_window import make_store, open_window, settled, until
+from tests.support.open_window import NOW, make_store, open_window, settled, until
 
 HEAD = "episode,at,channel,value,unit,by,note\n"
 GOOD = "bed-9,2026-03-28T01:00:00+00:00,label,Bed 9,,AB,\nbed-9,2026-03-28T02:00:00+00:00,rr,24,/min,AB,\n"

@@ -5,7 +5,7 @@ from datetime import UTC, datetime
 import pytest
 
 from core.record.instant import iso, parse
-from core.record.local_time import candidates, latest_wall_time, local
+from core.record.local_time import candidates, latest_wall_time, local, wall_time_near
 from core.record.message import RecordError
 
 LONDON = "Europe/London"
@@ -72,3 +72,25 @@ def test_candidates_are_none_one_or_two():
 
 def test_local_shows_the_wall_clock():
     assert local(parse("2026-07-01T12:00:00+00:00"), LONDON).hour == 13
+
+
+def near(hour, minute, at, now="2026-10-27T08:00:00+00:00", which=""):
+    return iso(wall_time_near(hour, minute, near=parse(at), now=parse(now), zone=LONDON, which=which))
+
+
+def test_the_right_time_of_an_old_entry_is_on_its_own_night():
+    assert near(23, 45, "2026-10-21T23:10:00+00:00") == "2026-10-21T22:45:00+00:00"  # of 00:10: the day before
+    assert near(0, 20, "2026-10-20T22:50:00+00:00") == "2026-10-20T23:20:00+00:00"  # of 23:50: the day after
+
+
+def test_near_an_hour_that_came_twice_it_is_asked_which():
+    with pytest.raises(RecordError, match=r"time\.repeated"):
+        near(1, 30, "2026-10-25T01:00:00+00:00")
+    assert near(1, 30, "2026-10-25T01:00:00+00:00", which="second") == "2026-10-25T01:30:00+00:00"
+
+
+def test_a_time_that_has_not_come_is_not_taken_for_yesterdays():
+    with pytest.raises(RecordError, match=r"time\.not_yet"):
+        near(8, 0, "2026-10-27T05:00:00+00:00", now="2026-10-27T05:30:00+00:00")
+    with pytest.raises(RecordError, match=r"time\.unreadable"):
+        near(25, 0, "2026-10-27T05:00:00+00:00")
