@@ -15,7 +15,7 @@ from app.figure_rows import doubts_of
 from app.finding_names import due_name, lever_name, marker_name
 from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
 from app.headline import lost_gain, verdict_with_loss
-from app.lever_words import lever_standing, without_decides
+from app.lever_words import lever_sentence, lever_standing, without_decides
 from app.phrases import gas_name, gas_words
 from app.theme import Tier, tier_word, verdict_of
 from app.words import Reader, sentence
@@ -225,14 +225,14 @@ class Explainer:
         texts = (*lever.why, *present, *without_decides(lever.limits))
         note = translate("explain", "A qualified person decides.")
         return Explanation(
-            lever_name(lever.key, self.reader), tuple(sentence(m, self.reader) for m in texts), (), (note,)
+            lever_name(lever.key, self.reader), tuple(lever_sentence(m, self.reader) for m in texts), (), (note,)
         )
 
     def idle_levers(self, levers: Sequence[LeverFigure]) -> Explanation:
         """Levers that could not act now, each with its reason: no need seen, not known, or no effect."""
         told = []
         for lever in levers:
-            why = " ".join(sentence(m, self.reader) for m in lever.why)
+            why = " ".join(lever_sentence(m, self.reader) for m in lever.why)
             told.append(f"{lever_name(lever.key, self.reader)}: {lever_standing(lever, self.reader)}. {why}")
         note = translate("explain", "A qualified person decides.")
         title = translate("explain", "Levers with no need seen, not known or without effect")

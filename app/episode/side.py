@@ -31,7 +31,7 @@ from app.headline import (
     pf_word,
     sign_of,
 )
-from app.lever_words import lever_reasons, lever_standing
+from app.lever_words import lever_reasons, lever_sentence, lever_standing
 from app.phrases import gas_words, state_of, support_now, translate
 from app.signs import Sign
 from app.theme import Theme, Tier, Verdict, tier_word, verdict_word
@@ -326,7 +326,7 @@ class _Facts:
         if idle:
             folded = [
                 f"{lever_name(x.key, self.reader)}: {lever_standing(x, self.reader)}. "
-                f"{' '.join(sentence(m, self.reader) for m in x.why)}"
+                f"{' '.join(lever_sentence(m, self.reader) for m in x.why)}"
                 for x in idle
             ]
             word = translate("side", "Enter tells why")

@@ -8,6 +8,7 @@ from app import formats
 from app.certainty import starred
 from app.finding_names import lever_name, marker_name
 from app.later_words import later_sentence
+from app.lever_words import lever_reasons
 from app.sheet.chart_data import shift_chart
 from app.sheet.gas_table import gas_rows
 from app.sheet.shapes import ChangeLine, EpisodePage, Fact, FlagLine
@@ -20,7 +21,6 @@ from core.judgement.shapes import EpisodeFigures, FlagFigure, Step
 
 MOST_LATER = 8
 """Values that came later are listed up to so many for each episode."""
-DECIDES = "lever.qualified_person_decides"
 
 
 class EpisodeWriter(SheetWriter):
@@ -54,8 +54,7 @@ class EpisodeWriter(SheetWriter):
     def _levers(self, f: EpisodeFigures) -> Iterator[str]:
         """What could act: the reason, then what limits it."""
         for lever in (x for x in f.levers if x.can_act):
-            limits = (m for m in lever.limits if m.key != DECIDES)
-            why = " ".join(sentence(m, self._reader) for m in (*lever.why, *limits))
+            why = " ".join(lever_reasons(lever, self._reader))
             yield f"{opened(lever_name(lever.key, self._reader))}: {why}"
 
     @staticmethod

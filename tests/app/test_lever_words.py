@@ -6,6 +6,7 @@ from app import lever_words
 from app.lever_words import lever_reasons, lever_standing
 from app.words import Reader
 from app.words.judgements import LEVERS
+from core.judgement.policy_sections import Levers
 from core.judgement.shapes import LeverFigure
 from core.record.message import Message
 from tests.support.sample_ward import sample_ward
@@ -53,3 +54,14 @@ def test_who_decides_is_left_to_the_page() -> None:
         for lever in f.levers:
             assert lever.limits[-1].key == lever_words.DECIDES
             assert not any("qualified person" in said for said in lever_reasons(lever, READER))
+
+
+def test_a_limit_that_is_to_be_confirmed_says_so_in_every_lever() -> None:
+    seen = {m.key: said for f in sample_ward() for x in f.levers for m in (*x.why, *x.limits)
+            if (said := lever_words.lever_sentence(m, READER)).endswith("].")}  # fmt: skip
+    assert seen["lever.rate_no_effect"].endswith("[from memory].")
+    assert seen["lever.leak_within_limit"].endswith("[common practice].")
+    assert all("[" not in said for key, said in seen.items() if key not in lever_words._LIMITS)
+    fields = {"leak", *Levers.__struct_fields__}
+    assert set(lever_words._LIMITS.values()) <= fields
+    assert fields <= {*lever_words._LIMITS.values()}, "a limit of levers that no text marks"
