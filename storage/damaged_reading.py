@@ -120,6 +120,7 @@ def _sound_connection(path: Path, key: bytes | None) -> Any | None:
     connection = None
     try:
         connection = raw_connection(path, key, mode="ro")
+        connection.execute("BEGIN")  # one state to the end, though another window may still write
         tables = {row[0] for row in connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'")}
         if connection.execute("PRAGMA quick_check(1)").fetchone()[0] == "ok":
             if not {s.batch.name, s.entry.name} <= tables:
