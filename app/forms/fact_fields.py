@@ -20,6 +20,9 @@ from core.record.units import MMHG_PER_KPA
 MOST_BUTTONS = 5
 """More answers than these stand in a list."""
 WIDE = 210
+TEXT = 290
+OF_SENTENCES = ("plan", "jobs")
+"""Texts that have a line of their own."""
 LIST = 340
 _IN_GAS_UNIT = ("usual_paco2",)
 Word = Callable[[str, str], str]
@@ -41,6 +44,8 @@ class FactField:
         kind, choices = self.channel.kind, self.channel.choices
         if kind is Kind.NUMBER:
             return self._number(theme, starts_at)
+        if kind is Kind.TEXT and self.key != "label":
+            self.width = 0 if self.key in OF_SENTENCES else TEXT
         if kind is not Kind.CHOICE:
             return QLineEdit()
         if len(choices) <= MOST_BUTTONS:

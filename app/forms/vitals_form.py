@@ -43,7 +43,7 @@ class VitalsForm(EntryForm):
             row.chosen.connect(self.edited)
             self.rows[key], self.cells[key] = row, Cell(channel_name(key), row, self.theme, width=0)
             looks.add_line(self.cells[key])
-        self.fit(980, 730)
+        self.fit(980, 776)
         self.first = self.fields["rr"].box
 
     def choice_word(self, choice: str) -> str:
