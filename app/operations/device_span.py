@@ -102,7 +102,7 @@ def record(store: Store, who: str, now: Instant, request: SpanRequest) -> Outcom
     if last + shift > now + LEAD:
         raise refuse("device.into_the_future", accepted="times that have been")
     entries = tuple(_entry(request, channel, shift, who) for channel in request.channels)
-    operation = "device.move" if shift else "device.leave_out"
+    operation = "samples moved" if shift else "samples left out"
     return append(store, request.episode, entries, who, operation, now)
 
 
