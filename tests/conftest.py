@@ -1,6 +1,7 @@
 """What every test gets: an off-screen Qt, a settings and data folder of its own."""
 
 import os
+from collections.abc import Iterator
 
 import pytest
 from hypothesis import HealthCheck, settings
@@ -13,6 +14,19 @@ settings.load_profile("luffmark")
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 os.environ["QT_SCALE_FACTOR"] = "1"
+
+from tests.support import nothing_left  # noqa: E402  # Qt reads the environment when it is imported
+
+nothing_left.see_timers()
+
+
+@pytest.fixture(autouse=True)
+def nothing_is_left_behind() -> Iterator[None]:
+    """No test leaves a thread, a running timer or a window to the next."""
+    before = nothing_left.threads()
+    yield
+    left = nothing_left.left_behind(before)
+    assert not left, f"left behind: {left}"
 
 
 @pytest.fixture(autouse=True)
