@@ -183,7 +183,7 @@ def test_the_keyboard_alone_goes_through_the_ward_and_the_episodes(qtbot, window
     assert window.pages.episode.stack.hasFocus()
     qtbot.keyClick(window, Key.Key_Up, Mod.ControlModifier)
     until(qtbot, lambda: window.pages.episode.title.text() == "Bed 7")
-    qtbot.keyClick(window, Key.Key_Left, Mod.ControlModifier)
+    qtbot.keyClick(window, Key.Key_Left, Mod.ControlModifier | Mod.ShiftModifier)
     assert window.pages.episode.stack.instant is not None
     assert "IPAP 18" in window.pages.episode.readout.plain()
     qtbot.keyClick(window.pages.episode.stack, Key.Key_Escape)
