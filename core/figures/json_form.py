@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import fields, is_dataclass
+from math import isfinite
 from typing import Any
 
 from core.judgement.gas_reading import read
@@ -29,6 +30,30 @@ _MICROSECONDS = 10**14
 _INTERNAL = frozenset({"reasons", "concern", "ids"})
 
 
+_UNIT_IN_KEY = {"mmHg": "_mmHg", "y": "_years", "cm": "_cm", "kg": "_kg", "%": "_percent"}
+_DIGITS = 10
+"""Significant digits of a number: more than any input has, fewer than binary fractions show."""
+
+
+def with_unit(channel: str) -> str:
+    """A profile channel as a key that carries its unit.
+
+    >>> with_unit("usual_paco2"), with_unit("age"), with_unit("indication")
+    ('usual_paco2_mmHg', 'age_years', 'indication')
+    """
+    known = CHANNELS.get(channel)
+    return channel + _UNIT_IN_KEY.get(known.unit, "") if known is not None else channel
+
+
+def tidy(value: float) -> float:
+    """A number without the last bits of its arithmetic.
+
+    >>> tidy(224.99999999999997), tidy(0.1 + 0.2)
+    (225.0, 0.3)
+    """
+    return float(f"{value:.{_DIGITS}g}") if isfinite(value) else value
+
+
 def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
     """The figures of one episode as JSON values."""
     form = _Form(figures.zone, word)
@@ -37,7 +62,7 @@ def to_json(figures: EpisodeFigures, word: Wording | None = None) -> Json:
         "label": figures.label,
         "as_of": form.instant(figures.as_of),
         "policy": figures.policy_hash,
-        "profile": {k: form.fact(k, v) for k, v in figures.profile.items()},
+        "profile": {with_unit(k): form.fact(k, v) for k, v in figures.profile.items()},
         "support": form.plain(figures.support),
         "now": form.plain(figures.now),
         "responses": [form.plain(r) for r in figures.responses],
@@ -74,8 +99,9 @@ class _Form:
 
     def fact(self, channel: str, value: float | str | None) -> float | str | None:
         """A profile fact; a moment among them as ISO 8601."""
-        is_moment = CHANNELS[channel].kind is Kind.INSTANT and isinstance(value, (int, float))
-        return self.instant(int(value)) if is_moment else value  # type: ignore[arg-type]
+        if CHANNELS[channel].kind is Kind.INSTANT and isinstance(value, int | float):
+            return self.instant(int(value))
+        return tidy(value) if isinstance(value, float) else value
 
     def message(self, message: Message) -> Json:
         out: Json = {"key": message.key, "values": {k: self.moment(k, v) for k, v in message.values.items()}}
@@ -86,6 +112,8 @@ class _Form:
     def moment(self, name: str, value: Any) -> Any:
         """A message's value; an instant, by its name and its size, as ISO 8601."""
         named = name.endswith("_at") or name in ("at", "since", "until")
+        if isinstance(value, float):
+            return tidy(value)
         return self.instant(value) if named and isinstance(value, int) and value > _MICROSECONDS else value
 
     def plain(self, shape: Any) -> Json:
@@ -113,7 +141,7 @@ class _Form:
         if isinstance(value, tuple):
             inner = "at" if name in ("t", "at", "probable_breaks") else ""
             return [self.value(inner, v) for v in value]
-        return value
+        return tidy(value) if isinstance(value, float) else value
 
     def gas(self, gas: GasFigure, age: Any) -> Json:
         """A gas, and under `reading` what it says in words and what its rules make one expect."""

@@ -5,6 +5,8 @@ import json
 from core.figures.episode_figures import episode_figures
 from core.figures.json_form import to_json
 from core.judgement.policy import shipped_policy
+from core.judgement.shapes import EpisodeFigures, GasFigure
+from core.record.message import Message
 from tests.support.log import device, episode, moment
 
 NIGHT = """
@@ -86,3 +88,14 @@ def test_an_unknown_fio2_is_null_with_its_reason():
     assert figures["gases"][-1]["pf_mmHg_reason"]["key"] == "undefined.fio2_unknown"
     assert figures["ratios"]["pf"]["latest_mmHg"] is None
     assert figures["ratios"]["pf"]["latest_mmHg_reason"]
+
+
+def test_profile_keys_carry_their_units_and_numbers_no_noise_of_arithmetic():
+    facts = {"usual_paco2": 224.99999999999997, "age": 65.0, "height": 169.0, "weight": 73.0, "target_spo2_low": 88.0,
+             "indication": "copd"}  # fmt: skip
+    told = to_json(EpisodeFigures("E", 9, profile=facts))["profile"]
+    assert told == {"usual_paco2_mmHg": 225.0, "age_years": 65.0, "height_cm": 169.0, "weight_kg": 73.0,
+                    "target_spo2_low_percent": 88.0, "indication": "copd"}  # fmt: skip
+    gas = GasFigure(5, "arterial", pf_mmHg=0.1 + 0.2, warnings=(Message("gas.odd", {"aa": 0.1 + 0.2, "at": 5}),))
+    (found,) = to_json(EpisodeFigures("E", 9, gases=(gas,)))["gases"]
+    assert (found["pf_mmHg"], found["warnings"][0]["values"]["aa"]) == (0.3, 0.3)
