@@ -219,6 +219,9 @@ class ClockRow:
     def set_margins(self, margins: Margins) -> None:
         self.margins = margins
         self.item.grid.setContentsMargins(margins.left, self.top_height(), margins.right, self.foot_height())
+        for layer in self.layers():  # an item used before may keep its size, and then nothing else tells them theirs
+            if isinstance(layer, Layer):
+                layer.resized()
 
     def gutter_wanted(self) -> int:
         """Pixels the labels at the right end need."""

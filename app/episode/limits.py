@@ -20,7 +20,7 @@ def bands_of(on: EpisodeOnScreen, panel: Panel) -> tuple[Band, ...]:
     found: list[Band] = []
     for channel in panel.channels:
         band = _band(on, channel)
-        if band is not None and all(band.unit == b.unit for b in found):
+        if band is not None and band not in found and all(band.unit == b.unit for b in found):
             found.append(band)
     return tuple(found)
 

@@ -236,3 +236,11 @@ def test_a_stack_that_showed_another_episode_looks_like_a_new_one(stack, stack_s
     fresh.set_spec(stack_spec)
     QApplication.processEvents()
     assert stack.grab().toImage() == fresh.grab().toImage()
+
+
+def test_another_episode_of_the_same_shape_is_drawn_whole(stack, stack_spec, qtbot):
+    """No row changes its size then, so nothing may wait for a new size to be drawn."""
+    other = replace(stack_spec, name="another", summary="another episode")
+    before = stack.grab().toImage()
+    stack.set_spec(other)
+    assert stack.grab().toImage() == before

@@ -60,5 +60,9 @@ def test_bands_of_two_units_never_lie_over_each_other():
     assert [b.unit for b in bands("spo2", "rr")] == ["%"]
 
 
+def test_a_limit_of_two_channels_is_drawn_once():
+    assert len(bands("rr", "rr_total")) == 1
+
+
 def test_what_has_no_limit_has_no_band():
     assert bands("hr") == ()
