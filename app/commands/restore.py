@@ -21,7 +21,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
     passphrase = context.passphrase()
     _prove(context, args.file, passphrase)
     context.store_path.parent.mkdir(parents=True, exist_ok=True)
-    request = operations.RestoreRequest(args.file, context.store_path, passphrase, args.against)
+    request = operations.RestoreRequest(args.file, context.store_path, passphrase, args.against, proven=True)
     made = operations.restore(None, context.by, context.now(), request).value
     lines = [f"Store {context.store_path} made from {args.file}. Check it: luffmark verify"]
     if made.unchecked is not None:

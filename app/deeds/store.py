@@ -165,7 +165,8 @@ class StoreDeeds(Doer):
         return self.window.doers.file.last_path or next(iter(recent), None)
 
     def _who(self) -> str:
-        return self.window.model.session.person if self.window.model else self.window.preferences.person
+        """Who works on files: nobody is known before a store is open, so the form asks."""
+        return self.window.model.session.person if self.window.model is not None else ""
 
     def _clock(self) -> Clock:
         return self.window.model.session.clock if self.window.model is not None else REAL

@@ -24,6 +24,7 @@ from app.failure import Failure
 from app.runner import Opener, Operation, Runner
 from app.theme import Theme
 from app.words import Reader, sentence
+from storage.people import MOST_INITIALS
 
 
 class _NoStore:
@@ -43,6 +44,8 @@ class FileWork(SecretDialog):
     ) -> None:
         super().__init__(title, word, theme, parent)
         self._who, self._clock, self._reader = who, clock, reader
+        self.initials, self.pin = QLineEdit(), QLineEdit()
+        """Who does it, where nobody is signed in to an open store."""
         self._runner: Runner | None = None
         self.source, self.new = QLineEdit(), QLineEdit()
         self.noted = QLabel()
@@ -73,6 +76,9 @@ class FileWork(SecretDialog):
         self.secret_line = self.secret(self.tr("Passphrase"))
         self.secret_line.setPlaceholderText(self.tr("or the recovery code"))
         self.form.addRow("", self.show_typed)
+        if not self._who:
+            self.initials.setMaxLength(MOST_INITIALS)
+            self.field(self.tr("Your initials"), self.initials)
         self._column.insertWidget(2, self.told, 1)
         self._column.insertWidget(3, self.open_new, 0, Qt.AlignmentFlag.AlignLeft)
         self.source.textChanged.connect(self.look_at_source)
@@ -131,6 +137,18 @@ class FileWork(SecretDialog):
         if chosen:
             self.new.setText(chosen)
 
+    @property
+    def who(self) -> str:
+        """Who does it: the person of the open store, else the initials that were typed."""
+        return self._who or self.initials.text().strip().upper()
+
+    def lacks_name(self) -> bool:
+        """Say that initials are wanted, where they are; whether that is so."""
+        if not self.who:
+            self.refuse(self.tr("Type your initials: the new store keeps who made it."))
+            self.initials.setFocus()
+        return not self.who
+
     def paths(self) -> tuple[Path, Path] | None:
         """Both files; None, and a word of it, where one is not named."""
         if self.source.text().strip() and self.new.text().strip():
@@ -157,7 +175,7 @@ class FileWork(SecretDialog):
         self.say(self.tr("Working..."))
         self._end_work()
         self._runner = Runner(cast(Opener, _NoStore), self)
-        self._runner.submit(operation, request, who=self._who, now=self._clock.now(), done=done, failed=self.failed)
+        self._runner.submit(operation, request, who=self.who, now=self._clock.now(), done=done, failed=self.failed)
 
     def _end_work(self) -> None:
         if self._runner is not None:

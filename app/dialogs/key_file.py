@@ -50,7 +50,7 @@ class KeyFileDialog(FileWork):
         return told.format(time=wall(at, self._reader.zone))
 
     def submit(self) -> None:
-        if (found := self.paths()) is not None and not self.lacks_passphrase():
+        if (found := self.paths()) is not None and not self.lacks_passphrase() and not self.lacks_name():
             self.work(key_file.put_back, key_file.PutBack(*found, self.passphrase or ""), self._put_back)
 
     def _put_back(self, outcome: Outcome[Path]) -> None:

@@ -4,11 +4,12 @@ from __future__ import annotations
 
 from pathlib import Path
 
-from PySide6.QtCore import QCoreApplication
+from PySide6.QtCore import QCoreApplication, QTimer
 from PySide6.QtWidgets import QCheckBox, QLineEdit, QWidget
 
 from app.clock import Clock
 from app.dialogs.file_work import FileWork, free_name
+from app.failure import Failure
 from app.formats import wall, with_unit
 from app.operations import backup as backups
 from app.operations.outcome import Outcome
@@ -16,7 +17,11 @@ from app.phrases import channel_name
 from app.theme import Theme
 from app.words import Reader, sentence
 from storage.backup_rotation import taken_at
+from storage.people import MOST_PIN
 from storage.restore_report import MOST_TOLD, NewerEntry
+
+WAIT_MS = 3_000
+"""How long the next try waits after a wrong PIN: a backup cannot keep how many there were."""
 
 
 class RestoreDialog(FileWork):
@@ -30,7 +35,7 @@ class RestoreDialog(FileWork):
         self.setWindowTitle(self.tr("Restore a backup"))
         self.go.setText(self.tr("Restore"))
         self._against, self._folder = against, folder
-        self.unchecked = QCheckBox(self.tr("Nobody here knows it: restore the copy unchecked"))
+        self.unchecked = QCheckBox(self.tr("Nobody knows the passphrase: restore the copy unchecked"))
         if backup is not None:
             self.source.setText(str(backup))
         if against is not None:
@@ -43,6 +48,11 @@ class RestoreDialog(FileWork):
 
     def lay_out(self, told: str, source: str, new: str) -> None:
         super().lay_out(told, source, new)
+        if not self._who:
+            self.pin.setEchoMode(QLineEdit.EchoMode.Password)
+            self.pin.setMaxLength(MOST_PIN)
+            self.pin.setPlaceholderText(self.tr("a ward lead's, where people sign in; none with the recovery code"))
+            self.field(self.tr("PIN"), self.pin)
         self.form.addRow("", self.unchecked)
         self.look_at_source()
 
@@ -68,10 +78,22 @@ class RestoreDialog(FileWork):
     def submit(self) -> None:
         if (found := self.paths()) is None:
             return
-        if not self.unchecked.isChecked() and self.lacks_passphrase():
+        if (not self.unchecked.isChecked() and self.lacks_passphrase()) or self.lacks_name():
             return
         passphrase = None if self.unchecked.isChecked() else self.passphrase
-        self.work(backups.restore, backups.RestoreRequest(*found, passphrase, self._against), self._restored)
+        request = backups.RestoreRequest(*found, passphrase, self._against, bool(self._who), self.pin.text())
+        self.work(backups.restore, request, self._restored)
+
+    def failed(self, failure: Failure) -> None:
+        """Say why it was refused; after a wrong PIN the next try waits."""
+        super().failed(failure)
+        if failure.message.key == "people.wrong_pin":
+            self.pin.clear()
+            self.go.setEnabled(False)
+            QTimer.singleShot(WAIT_MS, self._may_try_again)
+
+    def _may_try_again(self) -> None:
+        self.go.setEnabled(self.told.isHidden())
 
     def _restored(self, outcome: Outcome[backups.Restored]) -> None:
         self.show_told(restored_words(outcome.value, self._reader))

@@ -35,7 +35,7 @@ class SalvageDialog(FileWork):
         )  # fmt: skip
 
     def submit(self) -> None:
-        if (found := self.paths()) is not None and not self.lacks_passphrase():
+        if (found := self.paths()) is not None and not self.lacks_passphrase() and not self.lacks_name():
             self.work(salvaging.salvage, salvaging.SalvageRequest(*found, self.passphrase), self._salvaged)
 
     def _salvaged(self, outcome: Outcome[Any]) -> None:

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 from app.operations.outcome import Outcome
 from app.operations.people import require_lead
 from core.record.instant import Instant
-from core.record.message import Message, Value
+from core.record.message import Message, Value, refuse
 from storage.errors import StoreError
 
 if TYPE_CHECKING:
@@ -55,12 +55,17 @@ class Rotated:
 
 @dataclass(frozen=True, slots=True)
 class RestoreRequest:
-    """A backup, the store to be made of it, the passphrase where it is encrypted, and the old store if it opens."""
+    """A backup, the store to be made of it, the passphrase where it is encrypted, and the old store if it opens.
+
+    `proven`: who restores has proved who they are already, to an open store or a command; else `pin` does.
+    """
 
     backup: Path
     new: Path
     passphrase: str | None = field(default=None, repr=False)
     against: Path | None = None
+    proven: bool = False
+    pin: str = field(default="", repr=False)
 
 
 @dataclass(frozen=True, slots=True)
@@ -141,17 +146,18 @@ def low_disk(store: Path, *folders: Path) -> tuple[Message, ...]:
 def restore(store: object, who: str, now: Instant, request: RestoreRequest) -> Outcome[Restored]:
     """Make a new store of a backup and say what the old one holds beyond it. Needs no open store.
 
-    Where people sign in, a ward lead restores; the new store keeps that it was done, where it can be opened.
+    Where people sign in, a ward lead restores, or whoever has the recovery code; the new store keeps that it was
+    done, where it can be opened.
 
     Raises:
         StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`, `key.*`.
-        RecordError: `people.lead_needed`.
+        RecordError: `people.lead_needed`, `people.unknown`, `people.wrong_pin`.
     """
     from storage.store import Store
 
     if not is_encrypted_and_closed(request.backup, request.passphrase):
         with Store.open(request.backup, passphrase=request.passphrase, read_only=True) as source:
-            require_lead(source, who)
+            _require_right(source, who, request)
     unchecked = Store.restore(request.backup, request.new, passphrase=request.passphrase)
     if unchecked is not None:
         return Outcome(Restored(request.new, "", unchecked=unchecked), 0)
@@ -160,6 +166,21 @@ def restore(store: object, who: str, now: Instant, request: RestoreRequest) -> O
         detail = f"{request.backup.name}, head {found.printed_head}"
         receipt = made.record_event(RESTORED, person=who, now=now, detail=detail)
     return Outcome(found, receipt.last_seq)
+
+
+def _require_right(source: Store, who: str, request: RestoreRequest) -> None:
+    """Refuse who may not restore. The night must not wait for a lead where the recovery code is at hand."""
+    from storage import people
+
+    known = people.of_store(source)
+    if not known or any(people.is_code(source, secret) for secret in (request.passphrase or "", request.pin)):
+        return
+    if not request.proven:
+        person = people.active(known, who)
+        if not people.fits(person.pin, request.pin):
+            raise refuse("people.wrong_pin", person=person.initials)
+        who = person.initials
+    require_lead(source, who)
 
 
 def is_encrypted_and_closed(path: Path, passphrase: str | None) -> bool:

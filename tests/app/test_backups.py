@@ -1,6 +1,7 @@
 """Backups from the window: taken by the clock, told of when they fail, restored and salvaged."""
 
 from collections import namedtuple
+from dataclasses import replace
 
 import pytest
 from PySide6.QtWidgets import QFileDialog
@@ -24,6 +25,7 @@ from storage.keys import Cost
 from storage.store import Store
 from tests.support.open_window import NOW, make_store, open_window, settled, until
 
+SECRET = "four quiet boats tonight"
 Usage = namedtuple("Usage", "total used free")
 
 
@@ -180,6 +182,9 @@ def test_a_damaged_store_leads_from_the_first_page_to_what_is_left_of_it(qtbot, 
     dialog = next(d for d in window.findChildren(SalvageDialog) if d.isVisible())
     assert dialog.source.text() == str(path)
     dialog.go.click()
+    assert "initials" in dialog.wrong.text()  # no store is open: nobody is signed in
+    dialog.initials.setText("cd")
+    dialog.go.click()
     until(qtbot, lambda: dialog.told.isVisible())
     assert "Saved:" in dialog.told.toPlainText()
     assert not dialog.go.isEnabled()
@@ -196,10 +201,17 @@ def test_only_a_ward_lead_restores_where_people_sign_in(path, tmp_path, monkeypa
         people.add(store, "AB", "2580", people.LEAD, by="AB", now=NOW)
         people.add(store, "CD", "7391", people.STAFF, by="AB", now=NOW)
         store.backup(tmp_path / "copy.luff")
-    request = RestoreRequest(tmp_path / "copy.luff", tmp_path / "new.luffmark", None, path)
+    request = RestoreRequest(tmp_path / "copy.luff", tmp_path / "new.luffmark", None, path, proven=True)
     with pytest.raises(RecordError, match=r"people.lead_needed"):
         operations.restore(None, "CD", NOW, request)
+    for who, pin, key in (("AB", "7391", "people.wrong_pin"), ("AB", "", "people.wrong_pin"),
+                          ("CD", "7391", "people.lead_needed"), ("XY", "2580", "people.unknown")):  # fmt: skip
+        unproven = replace(request, proven=False, pin=pin)
+        with pytest.raises(RecordError, match=key):
+            operations.restore(None, who, NOW, unproven)
     assert not request.new.exists()
+    proved = replace(request, proven=False, pin="2580", new=tmp_path / "proved.luffmark")
+    assert operations.restore(None, "AB", NOW, proved).value.newer.batches == 0
     made = operations.restore(None, "AB", NOW, request).value
     assert made.newer.batches == 0
     with Store.open(request.new) as new:
@@ -236,3 +248,46 @@ def test_the_check_finds_that_the_newest_entries_were_cut_off(qtbot, path, tmp_p
 
 def _cells(window):
     return [d.table.item(r, 1).text() for d in window.findChildren(TableDialog) for r in range(d.table.rowCount())]
+
+
+@pytest.fixture
+def secret_ward(tmp_path, monkeypatch):
+    """An encrypted store whose people sign in, with a backup; its recovery code."""
+    monkeypatch.setattr(people.hashed, "__defaults__", (Cost(64, 1, 1),))
+    with Store.create(tmp_path / "ward.luffmark", now=NOW, passphrase=SECRET, cost=Cost(64, 1, 1)) as store:
+        people.add(store, "AB", "2580", people.LEAD, by="AB", now=NOW)
+        (tmp_path / "backups").mkdir()
+        operations.rotate(store, "AB", NOW, Rotation(tmp_path / "backups", now=True))
+        return store.path, store.recovery_code
+
+
+def test_at_three_in_the_morning_the_recovery_code_restores_without_a_lead(secret_ward, tmp_path):
+    path, code = secret_ward
+    backup = max(backups_in(tmp_path / "backups", path).items())[1]
+    made = operations.restore(None, "XY", NOW, RestoreRequest(backup, tmp_path / "new.luffmark", code, path)).value
+    assert made.unchecked is None
+    assert made.newer.batches == 0
+    with Store.open(tmp_path / "new.luffmark", passphrase=SECRET) as new:
+        assert [(e.person, e.event) for e in new.person_events((operations.RESTORED,))] == [
+            ("XY", operations.RESTORED)
+        ]
+
+
+def test_a_copy_that_nobody_can_check_is_a_choice_of_its_own_and_says_so(qtbot, secret_ward, tmp_path):
+    path, _ = secret_ward
+    window = MainWindow(Preferences(cautions_seen=True, recent_stores=(str(path),)))
+    qtbot.addWidget(window)
+    window.show()
+    dialog = window.doers.store.restore(None)
+    assert "Taken 28-Mar-2026" in dialog.noted.text()
+    dialog.initials.setText("AB")
+    dialog.go.click()
+    assert "Type its passphrase" in dialog.wrong.text()
+    assert not dialog.unchecked.isChecked()
+    dialog.unchecked.setChecked(True)
+    dialog.go.click()
+    until(qtbot, lambda: dialog.told.isVisible())
+    assert "NOT checked" in dialog.told.toPlainText()
+    assert "its pages, its chain and its rules were not checked" in dialog.told.toPlainText()
+    dialog.reject()
+    window.close()
