@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from app.operations.entry_questions import questions
+from app.operations.entry_questions import check_target, questions
 from app.operations.episode import checked_key, load
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded, append
@@ -72,6 +72,7 @@ def _previewed(store: Store, now: Instant, request: LineRequest) -> Preview:
     settings = SettingsInForce(episode)
     line = read_line(request.line, now=now, zone=request.zone, in_force=settings.at, gas_unit=request.gas_unit)
     check_not_future(line.at, now)
+    check_target(episode, line.at, line.readings)
     return Preview(episode.key, episode.label, line, questions(store, episode, line.at, line.readings))
 
 

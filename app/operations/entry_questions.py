@@ -14,12 +14,14 @@ from core.record.channels import CHANNELS, Group
 from core.record.entries import Entry
 from core.record.episode import Episode, build_episode
 from core.record.instant import Instant
-from core.record.message import Message
+from core.record.message import Message, refuse
 from core.record.reading import Reading
 from core.record.settings import SettingsInForce
 
 if TYPE_CHECKING:
     from storage.store import Store
+
+_TARGET = ("target_spo2_low", "target_spo2_high")
 
 
 def questions(store: Store, record: Episode, at: Instant, readings: Sequence[Reading]) -> tuple[Message, ...]:
@@ -33,6 +35,24 @@ def questions(store: Store, record: Episode, at: Instant, readings: Sequence[Rea
         asked += gas_doubts(readings, drawn_on, in_force(store), sample)
     asked += order_doubts(readings, at, record)
     return tuple(asked)
+
+
+def check_target(record: Episode, at: Instant, readings: Sequence[Reading]) -> None:
+    """Refuse an SpO2 target whose ends are the wrong way round, the new end against the one that stands.
+
+    Raises:
+        RecordError: `target.wrong_order`.
+    """
+    new = {r.channel.key: r.number for r in readings if r.channel.key in _TARGET}
+    low, high = (new.get(key, _stands(record, key, at)) for key in _TARGET)
+    if new and low is not None and high is not None and low >= high:
+        raise refuse("target.wrong_order", low=low, high=high, accepted="the low end below the high one")
+
+
+def _stands(record: Episode, key: str, at: Instant) -> float | None:
+    series = record.number(key)
+    i = series.last_at_or_before(at)
+    return float(series.v[i]) if i >= 0 else None
 
 
 def questions_of_change(

@@ -9,6 +9,7 @@ from difflib import get_close_matches
 from typing import TYPE_CHECKING
 
 from app.operations import policy
+from app.operations.entry_questions import check_target
 from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded, append
@@ -126,9 +127,12 @@ def _read(request: BeginRequest, key: str, now: Instant) -> tuple[tuple[Instant,
     moments = [(at, dict(request.facts) or {"label": key}), *((g.at, g.values) for g in request.given)]
     for moment, _ in moments:
         check_not_future(moment, now)
-    return tuple(
+    read = tuple(
         (moment, tuple(typed_reading(name, text) for name, text in values.items())) for moment, values in moments
     )
+    for moment, readings in read:
+        check_target(Episode(key, (), {}, {}, ()), moment, readings)
+    return read
 
 
 def typed_reading(name: str, text: str) -> Reading:

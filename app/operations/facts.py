@@ -11,7 +11,7 @@ from math import nan
 from typing import TYPE_CHECKING
 
 from app.operations.entry import Preview
-from app.operations.entry_questions import questions
+from app.operations.entry_questions import check_target, questions
 from app.operations.episode import load, typed_reading
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded, append
@@ -44,6 +44,7 @@ def preview(store: Store, who: str, now: Instant, request: FactsRequest) -> Outc
     check_not_future(request.at, now)
     record = load(store, request.episode)
     readings = tuple(typed_reading(key, text) for key, text in request.values.items())
+    check_target(record, request.at, readings)
     line = LogLine(request.at, request.at != now, readings, nan, nan)
     return Outcome(Preview(record.key, record.label, line, questions(store, record, line.at, readings)), store.head())
 

@@ -134,6 +134,8 @@ TEMPLATES: Final[dict[str, str]] = {
         "Accepted: {accepted}.",
     "settings.late_contradiction":
         "With what came later, IPAP {ipap:trim} is not above EPAP {epap:trim} cmH2O. Accepted: {accepted}.",
+    "target.wrong_order":
+        "The SpO2 target {low:trim} to {high:trim} % is the wrong way round. Accepted: {accepted}.",
     "time.not_yet": "{value} has not come yet. Accepted: {accepted}.",
     "time.repeated": "{value} came twice: the clock was set back. Say which: {accepted}.",
     "time.skipped": "{value} was never shown: the clock was set forward. Accepted: {accepted}.",

@@ -7,7 +7,7 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
-from app.operations import correction, entry, episode
+from app.operations import correction, entry, episode, facts
 from app.words import sentence
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
@@ -116,6 +116,19 @@ def test_a_correction_of_the_time_alone_asks_too(store: Store) -> None:
     later = correction.CorrectionRequest("A", change.ids[0], "typed wrong", at=NOW - 60 * MINUTE)
     asked = correction.correction_questions(store, "CD", NOW, later).value
     assert "doubt.settings_off_mask" in [m.key for m in asked]
+
+
+def test_a_target_the_wrong_way_round_is_refused_however_it_is_entered(store: Store) -> None:
+    log(store, "target spo2 low 88")
+    for refusing in (
+        lambda: log(store, "target spo2 high 86", confirmed=True),
+        lambda: facts.record(store, "AB", NOW, facts.FactsRequest("A", NOW, {"target_spo2_high": "88"}, "UTC", True)),
+        lambda: episode.begin(store, "AB", NOW, episode.BeginRequest("C", {"target_spo2_low": "96",
+                                                                           "target_spo2_high": "94"})),
+    ):  # fmt: skip
+        with pytest.raises(RecordError, match=r"target\.wrong_order"):
+            refusing()
+    assert log(store, "target spo2 high 92").entries[0].number == 92
 
 
 def test_a_moment_to_come_is_refused(store: Store) -> None:

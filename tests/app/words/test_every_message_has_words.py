@@ -25,7 +25,15 @@ KEY = re.compile(r"[a-z][a-z0-9_]*\.[a-z][a-z0-9_]*")
 NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*")
 NAMES_OF_NUMBERS = {"policy_limits.py"}
 """Modules that name numbers of the policy by their path, written like keys; their messages are calls."""
-OPERATIONS = {"entry.log", "entry.correct", "entry.withdraw", "entry.move", "entry.undo", "intake.withdraw"}
+OPERATIONS = {
+    "episode.begin",
+    "entry.log",
+    "entry.correct",
+    "entry.withdraw",
+    "entry.move",
+    "entry.undo",
+    "intake.withdraw",
+}
 """Names of operations in the ledger, written like keys; those given by name are found by `operations`."""
 
 
