@@ -9,10 +9,14 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Final
 
+from app.formats import wall
 from app.phrases import translate
+from core.record.instant import Instant
 
 if TYPE_CHECKING:
-    from app.chart.render import Spec
+    from PySide6.QtGui import QPainter
+
+    from app.chart.render import ChartSpec, Spec
     from app.pages import Pages
     from app.theme import Theme
 
@@ -30,6 +34,35 @@ class Picture:
     spec: Spec
     title: str
     size: tuple[int, int] = SIZE
+
+
+@dataclass(frozen=True, slots=True)
+class Titled:
+    """A chart under a line that says whose it is and as of when: a picture by itself must not be taken for another's.
+    Needs a QApplication."""
+
+    spec: ChartSpec
+    theme: Theme
+    title: str
+
+    def paint_on(self, painter: QPainter, width: int, height: int) -> None:
+        """Paint at the painter's origin on a surface of this size."""
+        from PySide6.QtCore import QRectF, Qt
+        from PySide6.QtGui import QColor
+
+        from app.chart.marks import fitted
+        from app.chart.render import paint_chart
+
+        px, theme = self.theme.px, self.theme
+        painter.setPen(QColor(theme.colours.ink))
+        painter.setFont(theme.font(theme.type.emphasis, bold=True))
+        words = fitted(painter, self.title, width - px(32))
+        painter.drawText(QRectF(px(16), px(8), width - px(32), px(26)), Qt.AlignmentFlag.AlignLeft, words)
+        top = px(38)
+        painter.save()
+        painter.translate(0, top)
+        paint_chart(self.spec, theme, painter, width, height - top, painter.worldTransform().m11())
+        painter.restore()
 
 
 def write_picture(picture: Picture, theme: Theme, path: Path) -> None:
@@ -62,21 +95,42 @@ def picture_data(picture: Picture, theme: Theme, suffix: str) -> bytes:
     return png_data(image_of(picture.spec, theme, width, height, SHARP))
 
 
-def picture_of_page(pages: Pages, theme: Theme) -> Picture | None:
-    """What the page that shows draws; None where it is text. `theme` is the look of the picture."""
+def compare_title(moment: str) -> str:
+    """What stands over a comparison."""
+    return translate("picture", "Episodes by hours since the start of support, {moment}").format(moment=moment)
+
+
+def moment_words(as_of: Instant, as_known_at: Instant | None, zone: str) -> str:
+    """As of when a picture is, and as known when.
+
+    >>> moment_words(0, None, "UTC")
+    'as of 01-Jan-1970 00:00'
+    """
+    if as_known_at is not None:
+        return translate("picture", "as known at {time}").format(time=wall(as_known_at, zone))
+    return translate("picture", "as of {time}").format(time=wall(as_of, zone))
+
+
+def picture_of_page(pages: Pages, theme: Theme, moment: str) -> Picture | None:
+    """What the page that shows draws; None where it is text. `theme` is the look of the picture, `moment` says as of
+    when it is, e.g. `as of 28-Mar-2026 05:30`."""
     name = pages.name
     if name == "ward" and pages.ward.lanes.spec is not None:
         lanes = pages.ward.lanes.spec
-        return Picture(lanes, lanes.name, (SIZE[0], max(240, 90 + 62 * len(lanes.lanes))))
+        title = translate("picture", "The ward, {moment}").format(moment=moment)
+        size = SIZE[0], max(280, 130 + 62 * len(lanes.lanes))
+        return Picture(Titled(lanes, theme, title), title, size)
     if name == "episode" and pages.episode.stack.spec is not None:
         spec = replace(pages.episode.stack.spec, window=pages.episode.stack.in_view)
-        return Picture(spec, spec.name)
+        whose = pages.episode.on_screen.figures if pages.episode.on_screen is not None else None
+        title = f"{whose.label} ({whose.episode}), {moment}" if whose is not None else spec.name
+        return Picture(Titled(spec, theme, title), title)
     if name == "map" and (map_spec := pages.map.picture_spec()) is not None:
         return Picture(map_spec, map_spec.name, (900, 760))
     if name == "compare" and pages.compare.chart.comparison is not None:
         from app.compare.picture import ComparisonPicture
 
-        title = translate("picture", "Episodes by hours since the start of support")
+        title = compare_title(moment)
         return Picture(ComparisonPicture(pages.compare.chart.comparison, theme, title), title, (1280, 960))
     if name == "statistics" and pages.statistics.found is not None:
         from app.statistics.bars import StatisticsPicture

@@ -152,9 +152,9 @@ def _check_writable(path: Path) -> None:
         ) from error
 
 
-def paint_chart(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int) -> None:
-    """Paints a chart at the painter's origin, for a page that holds more than the chart."""
-    _paint(spec, theme, painter, width, height, 1.0)
+def paint_chart(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int, scale: float = 1.0) -> None:
+    """Paints a chart at the painter's origin, for a page that holds more than the chart; `scale` dots per pixel."""
+    _paint(spec, theme, painter, width, height, scale)
 
 
 def _paint(spec: Spec, theme: Theme, painter: QPainter, width: int, height: int, scale: float) -> None:

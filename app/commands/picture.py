@@ -14,7 +14,7 @@ from app.operations import episode as episodes
 from app.operations import figures as operations
 from app.operations import panel as panels
 from app.operations import policy as policies
-from app.picture import SUFFIXES, Picture, write_picture
+from app.picture import SUFFIXES, Picture, Titled, compare_title, moment_words, write_picture
 from app.whole_file import claim
 from core.record.instant import HOUR, Instant
 from core.record.message import refuse
@@ -81,7 +81,12 @@ def _panels(
     from app.episode.stack_words import stack_of
 
     shown = _shown(context, store, requests[0], chosen)
-    return Picture(stack_of(shown, requests[0].as_of), shown.figures.label)
+    title = f"{shown.figures.label} ({shown.figures.episode}), {_words(context, requests[0])}"
+    return Picture(Titled(stack_of(shown, requests[0].as_of), theme, title), title)
+
+
+def _words(context: Context, request: operations.EpisodeRequest) -> str:
+    return moment_words(request.as_of, request.as_known_at, context.local_zone())
 
 
 def _map(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
@@ -100,7 +105,7 @@ def _compare(context: Context, store: Store, requests: list[operations.EpisodeRe
 
     answers = {r.episode: operations.of_episode(store, context.by, context.now(), r).value for r in requests}
     chosen = [OnWard(a.figures, course_of(a.record, a.figures.as_of)) for a in answers.values()]
-    title = "Episodes by hours since the start of support"
+    title = compare_title(_words(context, requests[0]))
     return Picture(ComparisonPicture(compare(chosen, answers, context.gas_unit), theme, title), title, (1280, 960))
 
 
@@ -145,5 +150,11 @@ def _shown(
     course = course_of(answer.record.until(request.as_of), request.as_of)
     policy = policies.in_force(store)
     return EpisodeOnScreen(
-        answer.record.until(request.as_of), answer.figures, course, policy, chosen, context.gas_unit
+        answer.record.until(request.as_of),
+        answer.figures,
+        course,
+        policy,
+        chosen,
+        context.gas_unit,
+        live=request.as_of >= now,
     )

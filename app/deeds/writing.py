@@ -49,7 +49,7 @@ class WritingDeeds(Doer):
         from app.picture import picture_of_page
         from app.theme import LIGHT
 
-        if picture_of_page(self.pages, LIGHT) is None:
+        if picture_of_page(self.pages, LIGHT, "") is None:
             self.window.say(self.tr("This page is text: save it as a PDF with Ctrl+P."))
             return
         kinds = self.tr("PDF (*.pdf);;SVG (*.svg);;PNG (*.png)")
@@ -59,10 +59,12 @@ class WritingDeeds(Doer):
 
     def write_picture(self, path: Path) -> None:
         """Draw what the page shows into a file, and say so or say why not."""
-        from app.picture import SUFFIXES, picture_of_page, write_picture
+        from app.picture import SUFFIXES, moment_words, picture_of_page, write_picture
         from app.theme import LIGHT
 
-        found = picture_of_page(self.pages, LIGHT)
+        session = self.model.session
+        moment = moment_words(session.moment(), session.as_known_at, session.zone)
+        found = picture_of_page(self.pages, LIGHT, moment)
         if path.suffix.lower() not in SUFFIXES:
             path = path.with_name(path.name + ".pdf")
         if found is not None:

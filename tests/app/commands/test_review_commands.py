@@ -10,6 +10,8 @@ from pypdf import PdfReader
 
 from app import demo
 from app.cli import main
+from app.operations import panel
+from app.panels import Panel, PanelSet, to_json, to_toml
 from storage.store import Store
 
 SPAN = ("--from", "2026-03-27T19:30:00Z", "--to", "2026-03-28T05:30:00Z")
@@ -120,16 +122,57 @@ def test_pictures_of_each_kind(capsys, night, tmp_path, what, episodes):
     with Store.open(night, read_only=True) as store:
         keys = store.episode_keys()[:episodes]
     path = tmp_path / f"{what}.svg"
-    asked = ("--as-of", SPAN[3], "--what", what, "--size", "800x600", "--out", path)
-    code, _, _ = run(capsys, "picture", *keys, "--store", night, *asked)
+    code, _, _ = run(capsys, "picture", *keys, "--what", what, "--store", night, "--as-of", SPAN[3], "--out", path)
     assert code == 0
+    text = path.read_text("utf-8")
+    assert "<image" not in text
+    assert "pH" in text
+
+
+def test_a_picture_of_too_few_or_too_many_is_refused(capsys, night, tmp_path):
+    out = ("--out", tmp_path / "x.png", "--store", night)
+    assert run(capsys, "picture", "A", "B", "--what", "map", *out)[0] == 2
+    assert run(capsys, "picture", "A", "--what", "compare", *out)[0] == 2
+
+
+def test_any_set_of_panels_is_drawn_by_name_or_file(capsys, own, tmp_path):
+    mine = PanelSet((Panel("a", "My own gas", ("ph",)), Panel("b", "Pulse alone", ("hr",))))
+    with Store.open(own) as store:
+        panel.keep(store, "AB", 0, panel.Layout("panelset.night round", to_json(mine)))
+    (tmp_path / "mine.toml").write_text(to_toml(mine))
+    drawn = ("picture", "N-0327-04", "--store", own, "--as-of", SPAN[3], "--what", "panels")
+    for n, name in enumerate(("night round", tmp_path / "mine.toml")):
+        out = tmp_path / f"{n}.svg"
+        assert run(capsys, *drawn, "--panels", name, "--out", out)[0] == 0
+        text = out.read_text("utf-8")
+        assert "My own gas" in text
+        assert "Pulse alone" in text
+        assert "<image" not in text
+    assert run(capsys, *drawn, "--out", tmp_path / "usual.svg")[0] == 0
+    assert "My own gas" not in (tmp_path / "usual.svg").read_text("utf-8")
+    code, _, err = run(capsys, *drawn, "--panels", "day round", "--out", tmp_path / "x.svg")
+    assert code == 1
+    assert "night round" in err
+    assert not (tmp_path / "x.svg").exists()
+
+
+@pytest.mark.parametrize(("what", "episodes"), [("panels", 1), ("map", 1), ("compare", 2)])
+@pytest.mark.parametrize("suffix", [".png", ".svg", ".pdf"])
+def test_pictures_have_their_own_resolution_and_say_whose_they_are(capsys, night, tmp_path, what, episodes, suffix):
+    """Vectors stay vectors, text stays text; a PNG has two dots for each pixel of its size."""
+    path = tmp_path / f"p{suffix}"
+    keys = ("N-0327-04", "N-0327-05")[:episodes]
+    asked = ("--as-of", SPAN[3], "--zone", "UTC", "--what", what, "--size", "800x600", "--out", path)
+    assert run(capsys, "picture", *keys, "--store", night, *asked)[0] == 0
     data = path.read_bytes()
     if suffix == ".png":
         assert (int.from_bytes(data[16:20], "big"), int.from_bytes(data[20:24], "big")) == (1600, 1200)
         return
     assert b"<image" not in data
+    text = data.decode("utf-8") if suffix == ".svg" else PdfReader(path).pages[0].extract_text()
+    for words in ("pH", "Bed 4", "28-Mar-2026 05:30"):
+        assert words in " ".join(text.split())
     if suffix == ".pdf":
         (page,) = PdfReader(path).pages
         assert (float(page.mediabox.width), float(page.mediabox.height)) == pytest.approx((600, 450), abs=1)
         assert not page.images
-        assert "pH" in page.extract_text()
