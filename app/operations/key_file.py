@@ -10,6 +10,7 @@ from core.record.instant import Instant
 from storage.errors import StoreError, store_error
 
 SET_ASIDE = ".set-aside"
+PUT_BACK = "key file put back"
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,13 +25,15 @@ class PutBack:
 def put_back(store: object, who: str, now: Instant, request: PutBack) -> Outcome[Path]:
     """Put a backup's key file beside a store, once it has opened the store; where the one there was set aside.
 
-    Nothing is written before the key fits. What the altered file held is kept under another name.
+    Nothing is written before the key fits. What the altered file held is kept under another name, and the ledger
+    keeps that it was done.
 
     Raises:
         StoreError: `store.missing`, `key.*`, `key.of_another_store`.
     """
     from storage import keys, opening
     from storage.engine import Database
+    from storage.store import Store
 
     if not request.store.is_file():
         raise store_error("store.missing", path=request.store.name)
@@ -50,6 +53,9 @@ def put_back(store: object, who: str, now: Instant, request: PutBack) -> Outcome
     if there.exists():
         there.replace(aside)
     keys.write_envelope(there, text)
+    with Store.open(request.store, passphrase=request.passphrase) as opened:
+        if opened.takes_writing():
+            opened.record_event(PUT_BACK, person=who, now=now, detail=request.source.name)
     return Outcome(aside, 0)
 
 

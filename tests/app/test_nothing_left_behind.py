@@ -70,6 +70,8 @@ def test_nothing_of_a_patient_is_left_behind(qtbot, folders, caplog, capsys):
         window.show_page(page)
         settled(qtbot, window)
     window.strip.set_text(f"note {MARK} half typed")
+    window.doers.log.do_end_episode()
+    window.doers.log.form.put({"reason": "weaned", "remark": f"to {MARK}"})
     window.keeping.drafts.keep()
     failures = []
     window.model.failed.connect(failures.append)
@@ -94,7 +96,7 @@ def test_nothing_of_a_patient_is_left_behind(qtbot, folders, caplog, capsys):
 
     with Store.open(path, passphrase=SECRET) as again:
         backup_rotation.rotate(again, folders["ward"], NOW)
-        assert any(MARK in d for d in again.drafts().values())
+        assert sum(MARK in d for d in again.drafts().values()) == 2  # the line and the form
     assert len(list(folders["ward"].glob("*.luff"))) == 1
     for folder in folders.values():
         assert holding(folder) == []

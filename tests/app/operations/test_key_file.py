@@ -2,7 +2,7 @@
 
 import pytest
 
-from app.operations.key_file import PutBack, put_back
+from app.operations.key_file import PUT_BACK, PutBack, put_back
 from storage.errors import StoreError
 from storage.keys import Cost, envelope_path
 from storage.store import Store
@@ -26,7 +26,9 @@ def test_an_altered_key_file_is_replaced_and_kept_aside(path):
         Store.open(path, passphrase=SECRET)
     aside = put_back(None, "AB", NOW, PutBack(path.with_name("copy.luff"), path, SECRET)).value
     assert aside.read_text() == altered
-    Store.open(path, passphrase=SECRET).close()
+    with Store.open(path, passphrase=SECRET) as store:
+        assert [(e.person, e.detail) for e in store.person_events((PUT_BACK,))] == [("AB", "copy.luff")]
+        assert store.verify() == ()
 
 
 def test_a_lost_key_file_comes_from_the_key_file_itself_too(path):
