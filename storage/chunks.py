@@ -28,6 +28,7 @@ _MAX_SCALE = 9
 _MAX_DECIMALS = 15
 _EXACT = 2.0**53
 _FEW = 240
+_MANY, _SAMPLE = 1_800, 360
 _MOST = 4_000_000
 """Samples in a block: an hour at a thousand a second. More is damage, not data."""
 _LEVEL = 6
@@ -139,10 +140,20 @@ def _value_forms(v: Values, nan: NDArray[np.bool_], decimals: int) -> list[tuple
     code, planes = _planes(np.diff(whole))
     low = int(whole.min())
     bits = int(whole.max() - low).bit_length()
-    forms = [(0, scale, int(whole[0]), code, planes)]
-    if bits <= 32:
-        forms.append((_BITS, scale, low, bits, _bit_packed(whole - low, bits)))
-    return forms
+    by_planes = (0, scale, int(whole[0]), code, planes)
+    if bits > 32:
+        return [by_planes]
+    packed = _bit_packed(whole - low, bits)
+    in_bits = (_BITS, scale, low, bits, packed)
+    return [in_bits] if _is_noise(np.diff(whole), len(packed)) else [by_planes, in_bits]
+
+
+def _is_noise(steps: Integers, packed: int) -> bool:
+    """Whether many differences would hardly deflate below the bits they are packed to, by a part of them."""
+    if steps.size < _MANY:
+        return False
+    some = steps[steps.size // 2 : steps.size // 2 + _SAMPLE]
+    return len(zlib.compress(_planes(some)[1], 1)) * steps.size > 1.15 * packed * some.size
 
 
 def _as_integers(v: Values, nan: NDArray[np.bool_], decimals: int) -> tuple[int, Integers] | None:

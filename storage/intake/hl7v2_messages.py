@@ -3,16 +3,13 @@ between messages, in bounded memory."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from dataclasses import dataclass
-from hashlib import sha256
-from pathlib import Path
 
-from core.record.message import refuse
 from storage.intake.findings import unreadable
 from storage.intake.steady_file import SteadyFile
+from storage.intake.watched_file import WatchedFile
 
-BLOCK = 1 << 20
 MAX_SEGMENT = 128 * 1024
 MAX_MESSAGE = 4 << 20
 MAX_FIELDS = 100_000
@@ -31,7 +28,7 @@ class RawMessage:
     line: int
 
 
-class MessageReader:
+class MessageReader(WatchedFile):
     """Iterates over the messages of a file, hashing as it goes.
 
     Raises:
@@ -40,21 +37,8 @@ class MessageReader:
         RecordError: `intake.cancelled`.
     """
 
-    def __init__(
-        self, path: Path, progress: Callable[[int, int], None] | None = None,
-        cancelled: Callable[[], bool] | None = None,
-    ) -> None:  # fmt: skip
-        self._path, self._progress, self._cancelled = path, progress, cancelled
-        self._hash = sha256()
-        self.size = 0
-
-    @property
-    def sha(self) -> str:
-        """SHA-256 of what was read so far, as hex."""
-        return self._hash.hexdigest()
-
     def __iter__(self) -> Iterator[RawMessage]:
-        steady = SteadyFile.begin(self._path)
+        steady = SteadyFile.begin(self.path)
         held: list[bytes] = []
         held_size = first = 0
         for line, segment in self._segments(steady):
@@ -79,16 +63,9 @@ class MessageReader:
     def _segments(self, steady: SteadyFile) -> Iterator[tuple[int, bytes]]:
         """Segments with their line; marks of the transport (VT, FS) and empty lines are left out."""
         carried, line = b"", 0
-        with self._path.open("rb") as file:
+        with self.path.open("rb") as file:
             while True:
-                if self._cancelled is not None and self._cancelled():
-                    raise refuse("intake.cancelled", path=self._path.name)
-                fresh = file.read(BLOCK)
-                self._hash.update(fresh)
-                self.size += len(fresh)
-                steady.check_read(self.size)
-                if self._progress is not None:
-                    self._progress(self.size, steady.size)
+                fresh = self.read(file, steady)
                 data = carried + fresh
                 if fresh and data.endswith(b"\r"):  # its LF may come with the next block
                     data, tail = data[:-1], b"\r"

@@ -24,7 +24,6 @@ from storage.intake.findings import (
 from storage.intake.judged import judged_intake
 from storage.intake.row_reading import EntryRow, RowReader
 from storage.intake.sample_spool import SampleSpool
-from storage.intake.steady_file import SteadyFile
 from storage.intake.text_blocks import BlockReader, TextBlock
 from storage.store import Store
 
@@ -62,15 +61,12 @@ class _Reading:
 
     def run(self) -> bool:
         """Read to the end; False where reading had to stop, with the reason among the refusals."""
-        steady = SteadyFile.begin(self._path)
         try:
             blocks = iter(self._reader)
             columns, rest = _after_header(next(blocks, None))
             fast = DeviceRows(columns, self._spool, self._now + CLOCK_LEAD)
             for block in _chained(rest, blocks):
                 self._take(block, columns, fast)
-                steady.check_read(self._reader.size)
-            steady.check()
         except UnreadableFileError as error:
             self._findings.refuse(error.line, "", error.value, error.message)
             return False

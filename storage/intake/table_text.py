@@ -6,16 +6,14 @@ import codecs
 import csv
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
-from hashlib import sha256
 from pathlib import Path
 
-from core.record.message import refuse
 from storage.intake.byte_fields import ByteFields, cut_fields
 from storage.intake.findings import unreadable
 from storage.intake.steady_file import SteadyFile
 from storage.intake.table_dialect import Dialect
+from storage.intake.watched_file import Progress, WatchedFile
 
-BLOCK = 1 << 20
 MAX_LINE = 128 * 1024
 _SHOWN = 80
 _FIRST = 256
@@ -41,7 +39,7 @@ class RowBlock:
         return [list(row) for row in zip(*columns, strict=True)]
 
 
-class TextTable:
+class TextTable(WatchedFile):
     """Iterates over the blocks of rows behind the header, hashing as it goes.
 
     Raises:
@@ -51,22 +49,15 @@ class TextTable:
     """
 
     def __init__(
-        self, path: Path, dialect: Dialect, progress: Callable[[int, int], None] | None = None,
+        self, path: Path, dialect: Dialect, progress: Progress | None = None,
         cancelled: Callable[[], bool] | None = None,
     ) -> None:  # fmt: skip
-        self._path, self._dialect = path, dialect
-        self._progress, self._cancelled = progress, cancelled
-        self._hash = sha256()
+        super().__init__(path, progress, cancelled)
+        self._dialect = dialect
         self._width = 0
-        self.size = 0
-
-    @property
-    def sha(self) -> str:
-        """SHA-256 of what was read so far, as hex."""
-        return self._hash.hexdigest()
 
     def __iter__(self) -> Iterator[RowBlock]:
-        steady = SteadyFile.begin(self._path)
+        steady = SteadyFile.begin(self.path)
         line = 0
         for text in self._texts(steady):
             for part in _begin_and_rest(text) if not self._width else (text,):
@@ -114,16 +105,9 @@ class TextTable:
         """Texts of whole rows with LF line ends."""
         decoder = codecs.getincrementaldecoder(self._dialect.encoding)("strict")
         carried, cut, lines = "", False, 0
-        with self._path.open("rb") as file:
+        with self.path.open("rb") as file:
             while True:
-                if self._cancelled is not None and self._cancelled():
-                    raise refuse("intake.cancelled", path=self._path.name)
-                data = file.read(BLOCK)
-                self._hash.update(data)
-                self.size += len(data)
-                steady.check_read(self.size)
-                if self._progress is not None:
-                    self._progress(self.size, steady.size)
+                data = self.read(file, steady)
                 try:
                     fresh = decoder.decode(data, final=not data)
                 except UnicodeDecodeError as error:

@@ -2,16 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from dataclasses import dataclass
-from hashlib import sha256
-from pathlib import Path
 from typing import BinaryIO
 
-from core.record.message import refuse
 from storage.intake.findings import unreadable
+from storage.intake.steady_file import SteadyFile
+from storage.intake.watched_file import WatchedFile
 
-BLOCK = 1 << 20
 MAX_LINE = 128 * 1024
 _BOMS = ((b"\xff\xfe", "UTF-16"), (b"\xfe\xff", "UTF-16"))
 _UTF8_BOM = b"\xef\xbb\xbf"
@@ -26,41 +24,25 @@ class TextBlock:
     lines: int
 
 
-class BlockReader:
+class BlockReader(WatchedFile):
     """Iterates over a file's blocks, hashing as it goes.
 
     Raises:
-        UnreadableFileError: a line over 128 KB, NUL bytes, or bytes that are not UTF-8.
+        UnreadableFileError: a line over 128 KB, NUL bytes, bytes that are not UTF-8, a file that changed.
         RecordError: `intake.cancelled`.
     """
 
-    def __init__(
-        self, path: Path, progress: Callable[[int, int], None] | None = None,
-        cancelled: Callable[[], bool] | None = None,
-    ) -> None:  # fmt: skip
-        self._path, self._progress, self._cancelled = path, progress, cancelled
-        self._hash = sha256()
-        self.size = 0
-
-    @property
-    def sha(self) -> str:
-        """SHA-256 of what was read so far, as hex."""
-        return self._hash.hexdigest()
-
     def __iter__(self) -> Iterator[TextBlock]:
-        total = self._path.stat().st_size
-        with self._path.open("rb") as file:
-            yield from self._whole_lines(file, total)
+        steady = SteadyFile.begin(self.path)
+        with self.path.open("rb") as file:
+            yield from self._whole_lines(file, steady)
+        steady.check()
 
-    def _whole_lines(self, file: BinaryIO, total: int) -> Iterator[TextBlock]:
-        carried = self._start(file)
+    def _whole_lines(self, file: BinaryIO, steady: SteadyFile) -> Iterator[TextBlock]:
+        carried = self._start(file, steady)
         line = 1
         while True:
-            if self._cancelled is not None and self._cancelled():
-                raise refuse("intake.cancelled", path=self._path.name)
-            fresh = self._read(file)
-            if self._progress is not None:
-                self._progress(self.size, total)
+            fresh = self.read(file, steady)
             data = carried + fresh
             if not fresh:
                 if data:
@@ -78,19 +60,13 @@ class BlockReader:
             if len(carried) > MAX_LINE and b"\n" not in carried:
                 raise _too_long(carried, line)
 
-    def _start(self, file: BinaryIO) -> bytes:
+    def _start(self, file: BinaryIO, steady: SteadyFile) -> bytes:
         """The first bytes, without a UTF-8 mark."""
-        first = self._read(file, 3)
+        first = self.read(file, steady, 3)
         for mark, name in _BOMS:
             if first.startswith(mark):
                 raise unreadable(1, name, "file.encoding", found=name, accepted="UTF-8")
         return first.removeprefix(_UTF8_BOM)
-
-    def _read(self, file: BinaryIO, size: int = BLOCK) -> bytes:
-        data = file.read(size)
-        self._hash.update(data)
-        self.size += len(data)
-        return data
 
 
 def _last_lines(data: bytes, line: int) -> TextBlock:

@@ -12,7 +12,7 @@ from hypothesis import strategies as st
 
 from core.record import instant
 from core.record.message import RecordError
-from storage.intake import sample_spool
+from storage.intake import sample_spool, watched_file
 from storage.intake.device_rows import DeviceRows
 from storage.intake.findings import Intake
 from storage.intake.iso_columns import read_instants
@@ -130,7 +130,6 @@ def test_samples_packed_early_are_the_same(tmp_path: Path, monkeypatch: pytest.M
 
 
 def test_blocks_give_the_same_rows_wherever_they_are_cut(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
-    from storage.intake import text_blocks
 
     lines = [f'E{i},2026-03-28T01:00:00Z,note,"one, ""two""\nthree {"x" * i}",,AB,,' for i in range(60)]
     lines += [f"E{i},2026-03-28T01:00:00Z,leak,{i},L/min,device,," for i in range(60)]
@@ -140,7 +139,7 @@ def test_blocks_give_the_same_rows_wherever_they_are_cut(tmp_path: Path, monkeyp
     whole = outcome(read(path, slow=False))
     assert [r[0] for r in whole[2]] == [182]  # type: ignore[index,attr-defined]
     for size in (64, 101, 1000):
-        monkeypatch.setattr(text_blocks, "BLOCK", size)
+        monkeypatch.setattr(watched_file, "BLOCK", size)
         assert outcome(read(path, slow=False)) == whole
 
 
