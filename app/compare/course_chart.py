@@ -103,6 +103,8 @@ class CourseChart(QWidget):
             unit,
         )
         ticks, decimals = value_ticks(row.low, row.high, view.height(), px(18))
+        if len(ticks) < 2:  # one value alone gives no scale
+            ticks, decimals = value_ticks(row.low, row.high, view.height(), px(12))
         for value in ticks:
             y = round(self._y(value, row, view))
             painter.fillRect(QRectF(view.left(), y, view.width(), 1), QColor(c.line))
