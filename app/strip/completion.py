@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from core.record.channels import CHANNELS, MODES, Group, Kind
+import re
+
+from core.record.channels import CHANNELS, MODES, Channel, Group, Kind
 from core.record.log_line import words_of_channels
 
 _FIRST = (
@@ -20,6 +22,8 @@ _FIRST = (
     "note",
 )
 """What a night types most stands first."""
+_OXYGEN = {"o2": CHANNELS["o2_flow"], "oxygen": CHANNELS["o2_flow"]}
+_VALUE = re.compile(r"([+-]?\d+(?:[.,]\d+)?)(\D*)")
 
 
 def words() -> tuple[str, ...]:
@@ -45,18 +49,54 @@ def token_at(text: str, cursor: int) -> tuple[int, str]:
 
 
 def completions(text: str, cursor: int, most: int = 6) -> tuple[str, ...]:
-    """What the word at the cursor could become; nothing for numbers, times and whole words.
+    """What the word at the cursor could become: a unit behind a value, a choice behind its channel, else a channel,
+    mode or event; nothing for times and whole words.
 
-    >>> completions("ipa", 3)
-    ('ipap',)
+    >>> completions("ipa", 3), completions("paco2 8.3 k", 11), completions("acvpu v", 7)
+    (('ipap',), ('kPa',), ('voice',))
     """
     start, token = token_at(text, cursor)
+    before = text[:start].casefold().split()
+    if not token or before[-1:] in (["note"], ["told"], ["drug"]):
+        return ()
     low = token.casefold()
-    if not low or not low[0].isalpha() or low in words_of_channels():
+    return (_choices(before, low) or _units(before, token) + _words(low))[:most]
+
+
+def _words(low: str) -> tuple[str, ...]:
+    if not low[0].isalpha() or low in words_of_channels():
         return ()
-    if start > 0 and text[:start].split()[-1:] in (["note"], ["told"], ["drug"]):
+    return tuple(w for w in words() if w.startswith(low) and w != low)
+
+
+def _units(before: list[str], token: str) -> tuple[str, ...]:
+    """Units that a value may have, written behind it or at it: `8.3 k`, `8.3k`."""
+    match = _VALUE.fullmatch(token)
+    number, low = (match[1], match[2].casefold()) if match else ("", token.casefold())
+    named = before if match else before[:-1] if before and _VALUE.fullmatch(before[-1]) else []
+    channel = _named(named)
+    if channel is None or channel.kind is not Kind.NUMBER or not low or not low[0].isalpha():
         return ()
-    return tuple(w for w in words() if w.startswith(low) and w != low)[:most]
+    names = (u.name for u in channel.units if u.name.casefold() != channel.key)  # pH is no unit to be typed
+    return tuple(f"{number}{n}" for n in names if n.casefold().startswith(low) and n.casefold() != low)
+
+
+def _choices(before: list[str], low: str) -> tuple[str, ...]:
+    """The rest of choices that begin with what stands behind their channel."""
+    for count in range(len(before), 0, -1):
+        channel = _named(before[:count])
+        if channel is None or channel.kind is not Kind.CHOICE:
+            continue
+        typed = " ".join([*before[count:], low])
+        skip = len(typed) - len(low)
+        return tuple(c[skip:] for c in channel.choices if c.casefold().startswith(typed) and c.casefold() != typed)
+    return ()
+
+
+def _named(before: list[str]) -> Channel | None:
+    """The channel that the last words name, three words first."""
+    known = words_of_channels() | _OXYGEN
+    return next((known[n] for k in (3, 2, 1) if len(before) >= k and (n := " ".join(before[-k:])) in known), None)
 
 
 def completed(text: str, cursor: int, word: str) -> tuple[str, int]:

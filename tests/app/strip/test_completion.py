@@ -23,6 +23,26 @@ def test_the_likeliest_comes_first(text, first):
     assert found[:1] == ((first,) if text != "bp" else ()) or found[0] == first
 
 
+@pytest.mark.parametrize(
+    ("text", "offered", "made"),
+    [
+        ("paco2 8.3 k", ("kPa",), "paco2 8.3 kPa "),
+        ("paco2 8,3k", ("8,3kPa",), "paco2 8,3kPa "),
+        ("o2 4 l", ("L/min",), "o2 4 L/min "),
+        ("hb 120 g", ("g/L", "g/dL"), "hb 120 g/L "),
+        ("ph 7.30 pa", ("paco2", "pao2"), "ph 7.30 paco2 "),
+        ("acvpu v", ("voice",), "acvpu voice "),
+        ("ceiling of care no", ("no intubation", "not recorded"), "ceiling of care no intubation "),
+        ("ceiling of care ward s", ("support is the ceiling",), "ceiling of care ward support is the ceiling "),
+        ("end_reason w", ("weaned",), "end_reason weaned "),
+    ],
+)
+def test_units_and_choices_are_completed(text, offered, made):
+    found = completions(text, len(text))
+    assert found[: len(offered)] == offered
+    assert completed(text, len(text), found[0])[0] == made
+
+
 @pytest.mark.parametrize("text", ["", "16", "16/6", "14:20", "ipap", "note ip", "told dr", "zzz"])
 def test_nothing_where_nothing_fits(text):
     assert completions(text, len(text)) == ()
