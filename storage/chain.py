@@ -10,8 +10,10 @@ from __future__ import annotations
 import json
 from collections.abc import Iterable, Mapping
 from hashlib import sha256
+from operator import itemgetter
 from typing import Any
 
+import msgspec
 import sqlalchemy as sa
 
 from storage.schema import LEDGER_ROWS, batch
@@ -23,15 +25,28 @@ ROW_COLUMNS: dict[str, tuple[str, ...]] = {
 }
 _WITH_SHA = frozenset({"chunk", "document"})
 _encode = json.JSONEncoder(ensure_ascii=False, separators=(",", ":"), allow_nan=False).encode
+_CHUNK = "chunk"
+_chunk_columns = itemgetter(*ROW_COLUMNS[_CHUNK])
+_SHA_AT = 1 + ROW_COLUMNS[_CHUNK].index("sha")
+_encode_plain = msgspec.json.Encoder().encode  # the same text as `_encode` gives for whole numbers and texts
 _HEADER = tuple(c.name for c in batch.columns if c.name != "hash")
 
 
 def row_digest(table: str, row: Mapping[str, Any]) -> str:
     """The digest of one ledger row, as hex."""
+    if table == _CHUNK:
+        return _chunk_digest(row)
     values = [table, *(row[name] for name in ROW_COLUMNS[table])]
     if table in _WITH_SHA:
         values = [value.hex() if isinstance(value, bytes) else value for value in values]
     return sha256(row["salt"] + _encode(values).encode()).hexdigest()
+
+
+def _chunk_digest(row: Mapping[str, Any]) -> str:
+    """The same for a block of samples, whose columns hold no fractions: a file brings tens of thousands of them."""
+    values = [_CHUNK, *_chunk_columns(row)]
+    values[_SHA_AT] = values[_SHA_AT].hex()
+    return sha256(row["salt"] + _encode_plain(values)).hexdigest()
 
 
 def rows_digest(digests: Iterable[str]) -> str:
