@@ -98,6 +98,8 @@ DEEDS: Final = (
          QT_TRANSLATE_NOOP("action", "Copy ended episodes into an archive; remove them when their time is over.")),
     Deed("change_passphrase", "store", QT_TRANSLATE_NOOP("action", "Change passphrase..."), ("Ctrl+Shift+Y",),
          QT_TRANSLATE_NOOP("action", "A new passphrase for this store, and a new recovery code if you like.")),
+    Deed("second_passphrase", "store", QT_TRANSLATE_NOOP("action", "Second passphrase..."), ("Ctrl+Alt+Y",),
+         QT_TRANSLATE_NOOP("action", "One that the ward lead holds, and that opens this store too.")),
     Deed("focus_strip", "log", QT_TRANSLATE_NOOP("action", "Log a line"), ("Ctrl+L", "/"),
          QT_TRANSLATE_NOOP("action", "Go to the log strip, for the selected patient."), needs_episode=True),
     Deed("gas_sent", "log", QT_TRANSLATE_NOOP("action", "Gas sent"), ("F6",),

@@ -1,7 +1,8 @@
 """The key of an encrypted store: a random data key, wrapped in an envelope that lies beside the store.
 
 The data key never changes, so a new passphrase rewrites only the envelope. It is wrapped once under the
-passphrase and once under a recovery code (ChaCha20-Poly1305, RFC 8439, under Argon2id, RFC 9106).
+passphrase, once under a recovery code, and where a ward lead set one under a second passphrase
+(ChaCha20-Poly1305, RFC 8439, under Argon2id, RFC 9106).
 
 What failed is told apart. The envelope carries a checksum: when that is wrong it was altered or damaged. When
 it is right and no wrap opens, the passphrase is wrong. Once a wrap opens, a seal keyed with the data key shows
@@ -28,7 +29,7 @@ KEY_BYTES = 32
 MIN_PASSPHRASE = 8
 _ALPHABET = "0123456789ABCDEFGHJKMNPQRSTVWXYZ"  # Crockford's base 32: no I, L, O, U
 _CODE_LENGTH = 32
-PASSPHRASE, RECOVERY = "passphrase", "recovery"
+PASSPHRASE, RECOVERY, SECOND = "passphrase", "recovery", "second"
 """Kinds of wraps."""
 _MAX_ENVELOPE = 100_000
 
@@ -150,6 +151,31 @@ def change_recovery_code(text: str, secret: str, cost: Cost = DEFAULT_COST) -> t
     kept = [w for w in envelope["wraps"] if w["kind"] != RECOVERY]
     wraps = [*kept, _wrap(key, envelope["store_id"], RECOVERY, code, cost)]
     return _sealed(envelope["store_id"], wraps, key), code
+
+
+def change_second(text: str, secret: str, second: str | None, cost: Cost = DEFAULT_COST) -> str:
+    """The envelope with a second passphrase beside the first, for who holds it; None takes it away. The passphrase
+    and the recovery code stay.
+
+    Raises:
+        StoreError: `key.wrong_passphrase` or `key.envelope_altered`.
+        RecordError: `passphrase.too_short`.
+    """
+    if second is not None:
+        check_passphrase(second)
+    key, envelope = open_envelope(text, secret), _read(text)
+    kept = [w for w in envelope["wraps"] if w["kind"] != SECOND]
+    more = [] if second is None else [_wrap(key, envelope["store_id"], SECOND, second, cost)]
+    return _sealed(envelope["store_id"], [*kept, *more], key)
+
+
+def has_second(text: str) -> bool:
+    """Whether a second passphrase opens the envelope too.
+
+    Raises:
+        StoreError: `key.envelope_altered`.
+    """
+    return any(wrap["kind"] == SECOND for wrap in _read(text)["wraps"])
 
 
 def read_envelope(path: Path) -> str:
@@ -300,7 +326,7 @@ def _read(text: str) -> dict[str, Any]:
 def _check_shape(envelope: dict[str, Any]) -> None:
     """Costs out of bounds, or more wraps than there are kinds, are refused before they are paid."""
     kinds = [wrap["kind"] for wrap in envelope["wraps"]]
-    if not kinds or len(set(kinds)) != len(kinds) or not set(kinds) <= {PASSPHRASE, RECOVERY}:
+    if not kinds or len(set(kinds)) != len(kinds) or not set(kinds) <= {PASSPHRASE, RECOVERY, SECOND}:
         raise ValueError("kinds")
     for wrap in envelope["wraps"]:
         cost = Cost(wrap["memory_kib"], wrap["passes"], wrap["lanes"])

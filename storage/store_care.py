@@ -109,6 +109,22 @@ class StoreCare(StoreKept):
         keys.write_envelope(keys.envelope_path(self.path), text)
         return code
 
+    def set_second_passphrase(self, secret: str, second: str | None, cost: keys.Cost = keys.DEFAULT_COST) -> None:
+        """Let a second passphrase open the store too, as a ward lead's; None takes it away.
+
+        Raises:
+            StoreError: `key.wrong_passphrase`, `store.not_encrypted`, `store.read_only`.
+            RecordError: `passphrase.too_short`.
+        """
+        self._refuse_read_only()
+        text = keys.change_second(self._envelope(), secret, second, cost)
+        keys.write_envelope(keys.envelope_path(self.path), text)
+
+    @property
+    def has_second_passphrase(self) -> bool:
+        """Whether a second passphrase opens the store."""
+        return self.is_encrypted and keys.has_second(self._envelope())
+
     def opens_with(self, secret: str) -> bool:
         """Whether a secret is the passphrase or the recovery code.
 

@@ -225,6 +225,15 @@ class StoreDeeds(Doer):
     def _code_kept(self, _result: int) -> None:
         self.code_dialog = None
 
+    def do_second_passphrase(self) -> None:
+        """Set, change or take away the second passphrase."""
+        from app.dialogs.second_passphrase import SecondPassphraseDialog
+
+        if not self.model.session.encrypted:
+            self.window.say(self.tr("This store is not encrypted: no passphrase opens it."))
+            return
+        SecondPassphraseDialog(self.model, self.window.reader, self.window.theme, self.window).open()
+
     def do_change_passphrase(self) -> None:
         """Ask for the old and the new one, change it."""
         from app.dialogs.passphrase import ChangePassphraseDialog

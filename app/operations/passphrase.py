@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
+from app.operations.people import require_lead
 from core.record.instant import Instant
 from storage.errors import store_error
 
@@ -13,6 +14,7 @@ if TYPE_CHECKING:
     from storage.store import Store
 
 CHANGED, CODE_CHANGED = "passphrase changed", "recovery code changed"
+SECOND_SET, SECOND_GONE = "second passphrase set", "second passphrase taken away"
 
 
 @dataclass(frozen=True, slots=True)
@@ -22,6 +24,33 @@ class ChangeRequest:
     secret: str = field(repr=False)
     new: str = field(repr=False)
     new_code: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class SecondRequest:
+    """A secret that opens the store now, and the second passphrase; "" takes it away."""
+
+    secret: str = field(repr=False)
+    second: str = field(repr=False)
+
+
+def has_second(store: Store, who: str, now: Instant, request: None) -> Outcome[bool]:
+    """Whether a second passphrase opens the store."""
+    return Outcome(store.has_second_passphrase, store.head())
+
+
+def set_second(store: Store, who: str, now: Instant, request: SecondRequest) -> Outcome[bool]:
+    """Set or take away the second passphrase; a ward lead does, where people sign in. Whether there is one now.
+
+    Raises:
+        StoreError: `key.wrong_passphrase`, `store.not_encrypted`, `store.read_only`.
+        RecordError: `passphrase.too_short`, `people.lead_needed`.
+    """
+    require_lead(store, who)
+    store.set_second_passphrase(request.secret, request.second or None)
+    event = SECOND_SET if request.second else SECOND_GONE
+    receipt = store.record_event(event, person=who, now=now)
+    return Outcome(bool(request.second), receipt.last_seq)
 
 
 def code_once(store: Store, who: str, now: Instant, request: None) -> Outcome[str]:
