@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
-from itertools import islice
+from collections.abc import Callable, Iterable, Iterator, Sequence
 
 from core.record.message import Message
+from storage.chunks import Block
 from storage.draft_batch import SourceFacts
 from storage.intake.entry_rows import EntryRows
 from storage.intake.findings import Findings, Intake, Refusal
@@ -15,8 +15,8 @@ from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
 from storage.store import Store
 
-_HOURS_AT_ONCE = 200
-"""Hours that are compared at once with what the store has: enough to be quick, few enough for memory."""
+_HOURS_AT_ONCE, _SAMPLES_AT_ONCE = 2_000, 400_000
+"""Hours and samples that are compared at once with what the store has: enough to be quick, few enough for memory."""
 
 
 def judged_intake(
@@ -58,8 +58,7 @@ def new_chunks(
     known = 0
     for key in spool.kinds():
         held = None if existing is None else HeldSamples(existing, *key)
-        blocks = iter(spool.blocks(key))
-        while some := tuple(islice(blocks, _HOURS_AT_ONCE)):
+        for some in _in_parts(spool.blocks(key)):
             step()
             have = held.have(some) if held is not None else [False] * len(some)
             for block, is_held in zip(some, have, strict=True):
@@ -68,3 +67,16 @@ def new_chunks(
                 else:
                     fresh.add(key, block)
     return fresh, known
+
+
+def _in_parts(blocks: Iterable[Block]) -> Iterator[list[Block]]:
+    waiting: list[Block] = []
+    count = 0
+    for block in blocks:
+        waiting.append(block)
+        count += block.n
+        if len(waiting) >= _HOURS_AT_ONCE or count >= _SAMPLES_AT_ONCE:
+            yield waiting
+            waiting, count = [], 0
+    if waiting:
+        yield waiting
