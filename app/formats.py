@@ -11,6 +11,7 @@ from decimal import ROUND_HALF_UP, Decimal
 from html import escape
 from math import isnan
 
+from app.language import in_language
 from core.record.channels import CHANNELS, Group, Kind
 from core.record.instant import MINUTE, Instant
 from core.record.local_time import candidates, local
@@ -91,7 +92,8 @@ def wall(at: Instant, zone: str) -> str:
 def span(start: Instant, end: Instant, zone: str) -> str:
     """From one moment to another; the date is said once where both share it."""
     same = day(start, zone) == day(end, zone)
-    return f"{wall(start, zone)} to {clock(end, zone) if same else wall(end, zone)}"
+    until = clock(end, zone) if same else wall(end, zone)
+    return in_language("{start} to {end}").format(start=wall(start, zone), end=until)
 
 
 def minutes(count: float) -> str:
@@ -115,8 +117,9 @@ def since(at: Instant, now: Instant) -> str:
     """
     length = (now - at) / MINUTE
     if abs(length) < 0.5:
-        return "just now"
-    return f"{minutes(length)} ago" if length > 0 else f"in {minutes(-length)}"
+        return in_language("just now")
+    text = in_language("{length} ago") if length > 0 else in_language("in {length}")
+    return text.format(length=minutes(abs(length)))
 
 
 def hours(count: float) -> str:
@@ -180,7 +183,7 @@ def choice_word(value: str) -> str:
     >>> choice_word("ards"), choice_word("alert")
     ('ARDS', 'alert')
     """
-    return _CHOICES.get(value, value)
+    return in_language(_CHOICES.get(value, value))
 
 
 def told_words(words: str) -> str:
@@ -190,7 +193,9 @@ def told_words(words: str) -> str:
     ('registrar. Answer: busy, will come', 'registrar')
     """
     who, bar, answer = (part.strip() for part in words.partition("|"))
-    return f"{who}. Answer: {answer}" if bar and answer else who if bar else words
+    if not (bar and answer):
+        return who if bar else words
+    return in_language("{who}. Answer: {answer}").format(who=who, answer=answer)
 
 
 def with_unit(text: str, unit: str) -> str:

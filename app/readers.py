@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from PySide6.QtCore import QCoreApplication
+
+from app.language import speak
 from app.words import Reader
 from core.record.instant import HOUR, Instant
 
@@ -12,3 +15,12 @@ NEAR = 11 * HOUR
 def reader_at(zone: str, gas_unit: str, moment: Instant) -> Reader:
     """A reader at a moment: times near it are told without their date."""
     return Reader(zone, gas_unit, near=(moment - NEAR, moment + NEAR))
+
+
+def speak_through_qt() -> None:
+    """Have every sentence pass through Qt's translators, in the context `sentence`."""
+    speak(_in_qt_s_language)
+
+
+def _in_qt_s_language(text: str) -> str:
+    return QCoreApplication.translate("sentence", text)

@@ -25,7 +25,7 @@ from app.page_turner import PageTurner
 from app.pages import Pages
 from app.preferences import Preferences
 from app.progress_line import ProgressLine
-from app.readers import reader_at
+from app.readers import reader_at, speak_through_qt
 from app.session import Changed, SessionModel, What
 from app.shift import Shift, shift_of
 from app.theme import THEMES, Theme, apply_theme
@@ -73,6 +73,7 @@ class MainWindow(QMainWindow):
         self.cover.addWidget(self.keeping.lock.page)
         self.setCentralWidget(self.cover)
         self.setWindowTitle("Luffmark")
+        speak_through_qt()
         self.setMinimumSize(*LEAST_SIZE)
         self._set_ticks()
         self.resize(*(preferences.window[2:] or USUAL_SIZE))

@@ -22,6 +22,7 @@ from dataclasses import dataclass
 from math import isnan
 
 from app import formats
+from app.language import in_language
 from core.record.channels import CHANNELS
 from core.record.instant import Instant
 from core.record.message import Value
@@ -38,13 +39,13 @@ MISSING = "?"
 class Reader:
     """Whom a sentence is for: the zone of wall-clock times, the unit of gas pressures, the language.
 
-    `translate` turns a template into the reader's language; the identity by default. `near` is a stretch of
+    `translate` turns a template into the reader's language: by default that of `speak`. `near` is a stretch of
     time whose dates the page itself states: moments in it are told by the clock alone.
     """
 
     zone: str = "UTC"
     gas_unit: str = "mmHg"
-    translate: Callable[[str], str] = str
+    translate: Callable[[str], str] = in_language
     near: tuple[Instant, Instant] | None = None
 
     def time(self, at: Instant) -> str:
