@@ -9,7 +9,7 @@ from PySide6.QtGui import QEnterEvent, QFocusEvent, QKeyEvent, QMouseEvent, QRes
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
 
 from app.explain import Explanation
-from app.formats import unbroken
+from app.formats import whole_units
 from app.signs import Sign
 from app.theme import Theme
 
@@ -188,18 +188,13 @@ def _head(theme: Theme, title: QLabel, value: str) -> QHBoxLayout:
 
 
 def _label(text: str, role: str) -> QLabel:
-    label = QLabel(_unbroken(text))
+    label = QLabel(whole_units(text))
     label.setTextFormat(Qt.TextFormat.PlainText)
     label.setWordWrap(True)
     label.setProperty("role", role)
     label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.MinimumExpanding)
     label.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
     return label
-
-
-def _unbroken(text: str) -> str:
-    """No line ends inside a value or a unit: 30 L/min stays whole."""
-    return unbroken(text).replace("/min", "/\N{WORD JOINER}min")
 
 
 def heading(text: str) -> QLabel:

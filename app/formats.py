@@ -268,6 +268,11 @@ def unbroken(text: str) -> str:
     return _VALUE.sub(NO_BREAK, text)
 
 
+def whole_units(text: str) -> str:
+    """The same for the screen, where no line ends inside a unit either: 30 L/min stays whole."""
+    return unbroken(text).replace("/min", "/\N{WORD JOINER}min")
+
+
 def plain(text: str) -> str:
-    """Text for pasting where only the plainest signs are safe: minus as hyphen, no hard spaces."""
-    return text.replace(MINUS, "-").replace(NO_BREAK, " ")
+    """Text for pasting where only the plainest signs are safe: minus as hyphen, no hard spaces or joiners."""
+    return text.replace(MINUS, "-").replace(NO_BREAK, " ").replace("\N{WORD JOINER}", "")

@@ -85,7 +85,7 @@ def _episode(page: EpisodePage, unit: str) -> Iterator[str]:
     told = "; ".join(page.told) or ABSENT
     for name, value in (*page.plan, ("Calls, answers", told), *page.care):
         yield from _wrapped(f"{name}: {value}", "  ")
-    yield from ("", "Remark", *_wrapped(page.remark or ABSENT, "  "))
+    yield from ("", "Handover remark", *_wrapped(page.remark or ABSENT, "  "))
     if page.to_check:
         yield from ("", "To check")
         for item in page.to_check:

@@ -108,7 +108,8 @@ class CourseChart(QWidget):
         for value in ticks:
             y = round(self._y(value, row, view))
             painter.fillRect(QRectF(view.left(), y, view.width(), 1), QColor(c.line))
-            painter.drawText(QRectF(box.left(), y - px(8), px(58), px(16)), _RIGHT, fixed(value, decimals))
+            word = fixed(value, max(decimals, row.least_decimals))
+            painter.drawText(QRectF(box.left(), y - px(8), px(58), px(16)), _RIGHT, word)
         painter.fillRect(QRectF(round(self._x(0, view)), view.top(), 1, view.height()), QColor(c.edge))
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)

@@ -39,9 +39,15 @@ class Row:
     title: str
     unit: str
     decimals: int
+    """Of a value that is read off."""
     low: float
     high: float
     lines: tuple[Line, ...]
+
+    @property
+    def least_decimals(self) -> int:
+        """Of its axis: a pH has two, as a laboratory writes it."""
+        return 2 if self.key == "ph" else 0
 
 
 @dataclass(frozen=True, slots=True)

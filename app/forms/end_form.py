@@ -33,7 +33,7 @@ class EndForm(EntryForm):
                     "starts again within two days the episode goes on, and nothing is lost."),
         )  # fmt: skip
         card.add_line(Cell(channel_name("end_reason"), self.reason, self.theme, width=0, noted=False))
-        card.add_line(Cell(self.tr("Remark"), self.remark, self.theme, width=0, noted=False))
+        card.add_line(Cell(self.tr("Comment"), self.remark, self.theme, width=0, noted=False))
         self.fit(700, 440)
         self.first = self.reason.buttons["weaned"]
 

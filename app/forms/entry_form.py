@@ -5,6 +5,7 @@ So a form and the strip cannot differ in what they read, ask or record.
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from dataclasses import replace
 from typing import NamedTuple
@@ -17,6 +18,7 @@ from app.operations.entry import LineRequest
 from app.session import SessionModel
 from app.strip.preview_words import PreviewWords, preview_words
 from app.theme import Theme
+from core.record.channels import CHANNELS
 from core.record.episode import Episode
 from core.record.instant import Instant
 from core.record.log_line import read_line
@@ -29,6 +31,18 @@ class Patient(NamedTuple):
 
     record: Episode
     label: str
+
+
+_COMPOUND = re.compile(r"\b[a-z0-9]+(?:_[a-z0-9]+)+\b")
+
+
+def spoken(line: str) -> str:
+    """A line with the names of channels as they are typed by hand, a space where the program keeps a bar.
+
+    >>> spoken("stopped end_reason weaned note to ward_7")
+    'stopped end reason weaned note to ward_7'
+    """
+    return _COMPOUND.sub(lambda m: m[0].replace("_", " ") if m[0] in CHANNELS else m[0], line)
 
 
 class EntryForm(PreviewedForm):
@@ -70,7 +84,7 @@ class EntryForm(PreviewedForm):
     def request(self) -> LineRequest | None:
         items = self.items()
         line = f"{self.time.text().strip()} {items}".strip() if items else ""
-        self.as_line.setText(self.tr("In the log strip: {line}").format(line=line) if line else "")
+        self.as_line.setText(self.tr("In the log strip: {line}").format(line=spoken(line)) if line else "")
         return LineRequest(self.patient.record.key, line, self.model.session.zone) if line else None
 
     def ask_preview(self, request: LineRequest) -> None:

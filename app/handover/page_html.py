@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from html import escape
 
+from app.formats import whole_units
 from app.phrases import translate
 from app.sheet.gas_table import HEADINGS
 from app.sheet.shapes import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
@@ -31,6 +32,11 @@ def anchor_of(place: int) -> str:
     return f"episode-{place}"
 
 
+def _shown(text: str) -> str:
+    """A text with every sign as it is, whose lines end between values."""
+    return escape(whole_units(text))
+
+
 class _Writer:
     """Writes parts of the page."""
 
@@ -39,17 +45,17 @@ class _Writer:
         self.c = theme.colours
 
     def heading(self, text: str, size: int, anchor: str = "") -> str:
-        words = f'<a name="{anchor}">{escape(text)}</a>' if anchor else escape(text)  # an empty anchor is lost
+        words = f'<a name="{anchor}">{_shown(text)}</a>' if anchor else _shown(text)  # an empty anchor is lost
         return (
             f'<p style="font-size:{self.theme.px(size)}px; font-weight:600; margin-top:{self.theme.px(14)}px; '
             f'margin-bottom:{self.theme.px(4)}px">{words}</p>'
         )
 
     def text(self, text: str) -> str:
-        return f'<p style="margin:{self.theme.px(2)}px 0">{escape(text)}</p>'
+        return f'<p style="margin:{self.theme.px(2)}px 0">{_shown(text)}</p>'
 
     def quiet(self, text: str) -> str:
-        return f'<p style="color:{self.c.ink_quiet}; margin:{self.theme.px(2)}px 0">{escape(text)}</p>'
+        return f'<p style="color:{self.c.ink_quiet}; margin:{self.theme.px(2)}px 0">{_shown(text)}</p>'
 
     def ward(self, content: SheetContent) -> Iterator[str]:
         page = content.ward
@@ -74,29 +80,29 @@ class _Writer:
 
     def ward_row(self, r: WardRow) -> tuple[str, ...]:
         quiet = f'<span style="color:{self.c.ink_quiet}">'
-        link = f'<a href="#{anchor_of(r.number)}" style="color:{self.c.accent}"><b>{escape(r.label)}</b></a>'
-        limits = f"<b>{escape(r.limits)}</b>" if r.is_limited else escape(r.limits)
-        who = f"{link}<br>{quiet}{escape(r.who)}</span><br>{limits}"
-        change = f"<br>{escape(r.change_of_state)}" if r.change_of_state else ""
-        told = [escape(f) for f in r.flags] + ([f"{quiet}{escape(r.remarks)}</span>"] if r.remarks else [])
-        told += [f"<b>{escape(r.action)}</b>"] if r.action else []
-        flags = "<br>".join(told) or f"{quiet}{escape(translate('handover', 'none'))}</span>"
-        support = f"{escape(r.support)}<br>{self.response(r)}"
-        return who, escape(r.state) + change, support, flags
+        link = f'<a href="#{anchor_of(r.number)}" style="color:{self.c.accent}"><b>{_shown(r.label)}</b></a>'
+        limits = f"<b>{_shown(r.limits)}</b>" if r.is_limited else _shown(r.limits)
+        who = f"{link}<br>{quiet}{_shown(r.who)}</span><br>{limits}"
+        change = f"<br>{_shown(r.change_of_state)}" if r.change_of_state else ""
+        told = [_shown(f) for f in r.flags] + ([f"{quiet}{_shown(r.remarks)}</span>"] if r.remarks else [])
+        told += [f"<b>{_shown(r.action)}</b>"] if r.action else []
+        flags = "<br>".join(told) or f"{quiet}{_shown(translate('handover', 'none'))}</span>"
+        support = f"{_shown(r.support)}<br>{self.response(r)}"
+        return who, _shown(r.state) + change, support, flags
 
     def response(self, r: WardRow) -> str:
         """The response; what got worse or lost its gain in the colour of its sign, and strong."""
         if not r.is_grave:
-            return escape(r.response)
+            return _shown(r.response)
         colour = self.c.verdict_inks[Verdict(r.sign)]
-        return f'<span style="color:{colour}; font-weight:600">{escape(r.response)}</span>'
+        return f'<span style="color:{colour}; font-weight:600">{_shown(r.response)}</span>'
 
     def table(self, heads: Iterable[str], rows: Iterable[Iterable[str]], widths: Iterable[int]) -> str:
         """Cells are rich text already; widths in per cent."""
         pad, line = self.theme.px(5), self.c.line
         quiet = f"color:{self.c.ink_quiet}; padding:{pad}px"
         head = "".join(
-            f'<td width="{w}%" style="{quiet}">{escape(h)}</td>' for h, w in zip(heads, widths, strict=True)
+            f'<td width="{w}%" style="{quiet}">{_shown(h)}</td>' for h, w in zip(heads, widths, strict=True)
         )
         cell = f'style="padding:{pad}px; border-top:1px solid {line}"'
         body = "".join("<tr>" + "".join(f'<td {cell} valign="top">{x}</td>' for x in row) + "</tr>" for row in rows)
@@ -108,7 +114,7 @@ class _Writer:
         yield self.quiet(page.subtitle)
         yield self.text(page.standing)
         facts = (*page.facts, *page.support)
-        cells = ((f'<span style="color:{self.c.ink_quiet}">{escape(k)}</span>', escape(v)) for k, v in facts)
+        cells = ((f'<span style="color:{self.c.ink_quiet}">{_shown(k)}</span>', _shown(v)) for k, v in facts)
         yield self.table(("", ""), cells, (22, 78))
         yield self.heading(page.since_head, self.theme.type.emphasis)
         yield from (self.text(line) for line in page.since)
@@ -129,7 +135,7 @@ class _Writer:
         yield from (self.text(translate("handover", "Told: {who}").format(who=t)) for t in page.told)
         yield from (self.text(f"{k}: {v}") for k, v in page.plan)
         yield self.text(
-            translate("handover", "Remark: {remark}").format(
+            translate("handover", "Handover remark: {remark}").format(
                 remark=page.remark
                 or translate("handover", "not recorded. Type 'handover remark ...' on the log strip.")
             )
@@ -149,15 +155,15 @@ class _Writer:
             for g in page.gases
         )  # fmt: skip
         widths = (10, 5, 6, 6, 6, 6, 6, 6, 6, 7, 16, 20)
-        yield self.table(HEADINGS, ([escape(cell) for cell in row] for row in rows), widths)
+        yield self.table(HEADINGS, ([_shown(cell) for cell in row] for row in rows), widths)
 
     def flag(self, f: FlagLine) -> str:
         word = tier_word(Tier(f.tier)).upper()
         weight = 600 if f.is_open else 400
         return (
             f'<p style="margin:{self.theme.px(3)}px 0">'
-            f'<span style="font-weight:{weight}">{escape(word)}: {escape(f.head)}</span><br>'
-            f'{escape(f.evidence)} <span style="color:{self.c.ink_quiet}">{escape(f.source)}</span></p>'
+            f'<span style="font-weight:{weight}">{_shown(word)}: {_shown(f.head)}</span><br>'
+            f'{_shown(f.evidence)} <span style="color:{self.c.ink_quiet}">{_shown(f.source)}</span></p>'
         )
 
     def changes(self, lines: tuple[ChangeLine, ...]) -> Iterator[str]:
@@ -169,4 +175,4 @@ class _Writer:
             translate("handover", "What"),
             translate("handover", "What followed"),
         )
-        yield self.table(heads, ((escape(x.at), escape(x.what), escape(x.response)) for x in lines), (15, 25, 60))
+        yield self.table(heads, ((_shown(x.at), _shown(x.what), _shown(x.response)) for x in lines), (15, 25, 60))

@@ -275,7 +275,7 @@ class RuledBox:
 
     @staticmethod
     def _name_height(press: Press, width: float) -> float:
-        return press.height("Remark", HEADING, width)
+        return press.height("Handover remark", HEADING, width)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         self.draw_high(press, x, y, width, self.height(press, width))
@@ -283,7 +283,7 @@ class RuledBox:
     def draw_high(self, press: Press, x: float, y: float, width: float, high: float) -> None:
         """Draw it with a height of its own."""
         press.box(x, y, width, high, weight=0.5, ink=LINE)
-        press.text(x + press.gap(5), y + press.gap(2), width, "Remark", HEADING)
+        press.text(x + press.gap(5), y + press.gap(2), width, "Handover remark", HEADING)
         if not self.words:
             press.text(x, y + press.gap(2.5), width - press.gap(5), self.empty, SMALL, Align.RIGHT)
         top = y + press.gap(2) + self._name_height(press, width)

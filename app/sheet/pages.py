@@ -99,7 +99,7 @@ def _on_more_pages(page: EpisodePage, press: Press, room: Room) -> Fitted:
     upper, lower, remark = tuple(upper_blocks(page)), list(lower_blocks(page, room.unit)), RuledBox(page.remark)
     fixed = height_of((*upper, goes_on), press, room.width) + LEAST_CHART
     if fixed + _end_height(remark, press, room) > room.height:
-        lower += [Heading("Remark"), *(Text(part) for part in page.remark.splitlines())]
+        lower += [Heading("Handover remark"), *(Text(part) for part in page.remark.splitlines())]
         remark = RuledBox("", "the remark stands on the next page")
     left = room.height - fixed - _end_height(remark, press, room)
     kept = _as_many(lower, press, room.width, left)

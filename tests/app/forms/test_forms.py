@@ -1,13 +1,18 @@
 """Forms in real use: by keys and mouse, over a real store; what they record is what the strip would record."""
 
+from math import nan
+
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QAbstractButton, QLabel, QWidget
 
 from app.forms.end_form import EndForm
+from app.forms.entry_form import spoken as typed_by_hand
 from app.forms.gas_form import GasForm
 from app.forms.settings_form import SettingsForm
 from app.forms.vitals_form import VitalsForm
+from core.record.log_line import read_line
+from core.record.settings import Settings
 from tests.support.open_window import make_store, open_window, settled, until
 
 Key, Mod = Qt.Key, Qt.KeyboardModifier
@@ -80,6 +85,19 @@ def test_a_form_that_could_be_taken_for_a_control_says_that_it_only_records(qtbo
     said = [x.text() for x in form.findChildren(QLabel) if x.isVisible()]
     assert any(text.startswith("Records only: the ventilator is not changed.") for text in said)
     qtbot.keyClick(form, Key.Key_Escape)
+
+
+@pytest.mark.parametrize(
+    "line",
+    ["stopped end_reason weaned", "gas_fio2 40 ph 7.3 site arterial", "o2_flow 4", "rate_set 16", "mask_off"],
+)
+def test_the_line_that_a_form_shows_may_be_typed_as_it_stands(line):
+    """Names of channels stand there as people type them, and mean the same."""
+    now, force = 10**15, Settings("BPAP-ST", 18.0, 5.0, nan, 0.3, nan, 14.0, 1.0, "oronasal")
+    shown = typed_by_hand(line)
+    assert "_" not in shown
+    told = [read_line(text, now=now, zone="UTC", in_force=force).readings for text in (line, shown)]
+    assert [(r.channel.key, r.value) for r in told[0]] == [(r.channel.key, r.value) for r in told[1]]
 
 
 def test_buttons_do_what_arrow_keys_do_and_the_wheel_does_nothing(qtbot, window):

@@ -31,7 +31,7 @@ def test_every_question_stands_on_the_form(qapp, paper):
         "Levers noted",
         "Settings now",
         "Flags",
-        "Remark",
+        "Handover remark",
         "Given by",
         "Taken by",
     ):

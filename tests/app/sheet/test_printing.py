@@ -113,7 +113,7 @@ def test_an_episodes_page_says_all_that_is_handed_over(printed: tuple[str, bytes
             assert all(_flat(cell) in text for cell in row), (page.label, row)
         for change in page.changes[:-1]:
             assert _flat(change.response) in text or _flat(change.brief) in text, "every change has its verdict"
-        for heading in (*HEADINGS, "Remark", "Given by", "Taken by", "Time"):
+        for heading in (*HEADINGS, "Handover remark", "Given by", "Taken by", "Time"):
             assert _flat(heading) in text, heading
 
 
