@@ -150,6 +150,12 @@ def remove(store: Store, episode: str, *, by: str, now: Instant) -> Removed:
     return Removed(episode, sum(d.recorded_at <= old for d in before), len(naming), until)
 
 
+def old_documents(store: Store, now: Instant) -> int:
+    """How many documents are older than the ward's retention time; none while it is not set."""
+    days = retention_days(store)
+    return 0 if days is None else sum(d.recorded_at <= now - days * DAY for d in store.documents())
+
+
 def remove_documents(store: Store, *, by: str, now: Instant) -> int:
     """Remove the documents and drafts that are older than the ward's retention time; how many documents.
 

@@ -42,6 +42,7 @@ class ArchiveDialog(AskingDialog):
         self.go.setText(self.tr("Archive the chosen..."))
         self._model, self._reader = model, reader
         self.ended: tuple[Ended, ...] = ()
+        self._old = 0
         self.told = QLabel()
         self.told.setWordWrap(True)
         self.told.setTextFormat(Qt.TextFormat.PlainText)
@@ -51,6 +52,7 @@ class ArchiveDialog(AskingDialog):
         self.days.setButtonSymbols(QSpinBox.ButtonSymbols.NoButtons)
         self.days.setValue(3650)
         self.keep, self.remove = QPushButton(self.tr("Keep so long")), QPushButton(self.tr("Remove the chosen..."))
+        self.remove.setEnabled(False)
         self.body.addWidget(self.told)
         self.add_body(self.table)
         row = QHBoxLayout()
@@ -87,6 +89,7 @@ class ArchiveDialog(AskingDialog):
 
     def _listed(self, outcome: Outcome[operations.EndedEpisodes]) -> None:
         self.ended, days = outcome.value.episodes, outcome.value.days
+        self._old = outcome.value.old_documents
         if days is None:
             told = self.tr("The ward has not said how long it keeps ended episodes: nothing can be removed.")
         else:
@@ -115,7 +118,9 @@ class ArchiveDialog(AskingDialog):
         free = all(e.removable_from is not None and e.removable_from <= now
                    for e in self.ended if e.episode in chosen)  # fmt: skip
         self.go.setEnabled(bool(chosen))
-        self.remove.setEnabled(bool(chosen) and free)
+        self.remove.setEnabled(free if chosen else self._old > 0)
+        of_handovers = self._old and not chosen
+        self.remove.setText(self.tr("Remove old handovers...") if of_handovers else self.tr("Remove the chosen..."))
 
     # deeds
 
@@ -144,6 +149,12 @@ class ArchiveDialog(AskingDialog):
         self._ask_list()
 
     def _ask_remove(self) -> None:
+        if not self.chosen():
+            told = self.tr("Remove {count} closed handovers for good? They are older than the ward's retention time.")
+            asked = QMessageBox.question(self, self.windowTitle(), told.format(count=self._old))
+            if asked is QMessageBox.StandardButton.Yes:
+                self.remove_chosen()
+            return
         gone = day(self._model.session.now() + YEAR, self._reader.zone)
         told = self.tr(
             "Remove {count} episodes for good? This cannot be undone. Closed handovers as old as the ward's "
@@ -156,7 +167,7 @@ class ArchiveDialog(AskingDialog):
             self.remove_chosen()
 
     def remove_chosen(self) -> None:
-        """Remove the chosen ones for good."""
+        """Remove the chosen ones for good; where none is chosen, closed handovers past their time."""
         self._model.ask(operations.remove, self.chosen(), done=self._removed, failed=self.failed)
 
     def _removed(self, outcome: Outcome[tuple[Removed, ...]]) -> None:

@@ -27,15 +27,18 @@ class ArchiveRequest:
 
 @dataclass(frozen=True, slots=True)
 class EndedEpisodes:
-    """The ended episodes, and for how many days the ward keeps them (None: not said)."""
+    """The ended episodes, for how many days the ward keeps them (None: not said), and how many closed handovers are
+    older than that."""
 
     episodes: tuple[Ended, ...]
     days: int | None
+    old_documents: int = 0
 
 
 def listed(store: Store, who: str, now: Instant, request: None) -> Outcome[EndedEpisodes]:
     """Every ended episode, the longest ended first."""
-    return Outcome(EndedEpisodes(archive.ended(store), archive.retention_days(store)), store.head())
+    found = EndedEpisodes(archive.ended(store), archive.retention_days(store), archive.old_documents(store, now))
+    return Outcome(found, store.head())
 
 
 def write(store: Store, who: str, now: Instant, request: ArchiveRequest) -> Outcome[Archived]:

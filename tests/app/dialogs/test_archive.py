@@ -5,6 +5,7 @@ from app.dialogs.archive import ArchiveDialog
 from app.operations.entry import LineRequest, log_line
 from core.record.entries import NewEntry
 from core.record.instant import DAY, HOUR
+from storage import archive
 from storage.store import Store
 from tests.support.open_window import NOW, ZONE, make_store, open_window, settled, until
 
@@ -42,3 +43,23 @@ def test_an_ended_episode_is_archived_opened_and_removed(qtbot, tmp_path):
         assert "archive of closed episodes" in window.keeping.notices.plain()
         assert not window.strip.line.isEnabled()
         assert window.pages.ward.shown_keys() == ("bed-3",) or "bed-3" in window.feed.answers
+
+
+def test_handovers_older_than_the_retention_time_go_alone(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    with Store.open(path) as store:
+        store.put_document("handover", "old", b"%PDF", "AB", NOW)
+        archive.set_retention(store, 30, by="AB", now=NOW)
+    with open_window(qtbot, path, clock=still(NOW + 40 * DAY)) as window:
+        window.actions_by_key["archive"].trigger()
+        dialog = next(d for d in window.findChildren(ArchiveDialog) if d.isVisible())
+        until(qtbot, lambda: dialog.remove.isEnabled())
+        assert dialog.remove.text() == "Remove old handovers..."
+        dialog.remove_chosen()
+        until(qtbot, lambda: "1 closed handover(s)" in dialog.wrong.text())
+        until(qtbot, lambda: not dialog.remove.isEnabled())
+        dialog.reject()
+        settled(qtbot, window)
+    with Store.open(path) as store:
+        assert store.documents() == ()
+        assert store.verify() == ()
