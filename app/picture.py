@@ -84,15 +84,17 @@ def picture_data(picture: Picture, theme: Theme, suffix: str) -> bytes:
         ValueError: the suffix is none of `SUFFIXES`.
     """
     from app.chart.render import image_of, pdf_data, png_data, svg_data
+    from app.picture_foot import Cautioned
 
     width, height = picture.size
     if suffix not in SUFFIXES:
         raise ValueError(f"'{suffix}' is none of {', '.join(SUFFIXES)}")
+    spec = Cautioned(picture.spec, theme)
     if suffix == ".svg":
-        return svg_data(picture.spec, theme, width, height, picture.title)
+        return svg_data(spec, theme, width, height, picture.title)
     if suffix == ".pdf":
-        return pdf_data(picture.spec, theme, width, height, picture.title)
-    return png_data(image_of(picture.spec, theme, width, height, SHARP))
+        return pdf_data(spec, theme, width, height, picture.title)
+    return png_data(image_of(spec, theme, width, height, SHARP))
 
 
 def compare_title(moment: str) -> str:
