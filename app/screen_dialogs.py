@@ -16,14 +16,13 @@ if TYPE_CHECKING:
 
 BY_ACTION: Final = (
     ("explain", "explain"), ("panels", "panels"), ("new-episode", "new_episode"), ("correct", "correct"),
-    ("policy", "policy"), ("table", "table"), ("help", "help"), ("about", "about"),
+    ("device-span", "device_span"), ("policy", "policy"), ("table", "table"), ("help", "help"), ("about", "about"),
     ("settings-form", "settings_form"), ("gas-form", "gas_form"), ("vitals-form", "vitals_form"),
     ("facts-form", "facts_form"), ("end-support", "end_episode"), ("settle-flag", "settle_flag"),
     ("close-due", "close_due"), ("problem-report", "report_problem"), ("export", "export_values"),
     ("files-taken", "taken"), ("people", "people"), ("archive", "archive"), ("backups", "backups"),
-    ("restore", "restore"), ("salvage", "salvage"), ("key-file", "key_file"),
-    ("close-handover", "close_handover"), ("closed-handovers", "closed_handovers"),
-    ("print-preview", "print_handover"),
+    ("restore", "restore"), ("salvage", "salvage"), ("key-file", "key_file"), ("close-handover", "close_handover"),
+    ("closed-handovers", "closed_handovers"), ("print-preview", "print_handover"),
 )  # fmt: skip
 """Name of the picture, and the action that brings the dialog up."""
 
@@ -105,11 +104,13 @@ def _of_people(window: MainWindow) -> dict[str, Callable[[], QDialog]]:
 
 def _of_secrets(window: MainWindow) -> dict[str, Callable[[], QDialog]]:
     from app.dialogs import passphrase
+    from app.dialogs.second_passphrase import SecondPassphraseDialog
 
-    theme, name = window.theme, "ward.luffmark"
+    model, reader, theme, name = window.doers.file.model, window.reader, window.theme, "ward.luffmark"
     return {
         "new-store": lambda: passphrase.NewStoreDialog(name, theme, window),
         "open-store": lambda: passphrase.OpenStoreDialog(name, "", theme, window),
         "change-passphrase": lambda: passphrase.ChangePassphraseDialog(lambda *_: None, theme, window),
+        "second-passphrase": lambda: SecondPassphraseDialog(model, reader, theme, window),
         "recovery-code": lambda: passphrase.RecoveryCodeDialog(name, _CODE, theme, window),
     }

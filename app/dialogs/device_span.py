@@ -44,13 +44,17 @@ class DeviceSpanDialog(AskingDialog):
         self.act = ChoiceRow("", ((LEAVE_OUT, self.tr("do not count")), (MOVE, self.tr("belong to another time"))))
         self.meant = QLabel()
         self.back = QPushButton(self.tr("Take the chosen back"))
+        self.every = QPushButton(self.tr("All channels"))
+        for button in (self.back, self.every):
+            button.setProperty("role", "small")
+            button.setAutoDefault(False)
         self._ask = QTimer(self)
         self._ask.setSingleShot(True)
         self._ask.setInterval(_ASK_MS)
         self._ask.timeout.connect(self._ask_count)
         self._lay_out()
         self._connect()
-        self.resize(theme.px(680), theme.px(480))
+        self.resize(theme.px(680), theme.px(440))
         self._ask_list()
 
     def _lay_out(self) -> None:
@@ -70,6 +74,7 @@ class DeviceSpanDialog(AskingDialog):
         self.minutes.setPlaceholderText(self.tr("minutes later, e.g. 60; earlier, e.g. -60"))
         self.reason.setPlaceholderText(self.tr("why, in a few words"))
         self.field(self.tr("Channels"), self.channels)
+        self.form.addRow("", self.every)
         self.field(self.tr("From"), self.start)
         self.field(self.tr("To"), self.end)
         self.field(self.tr("They"), self.act)
@@ -85,6 +90,7 @@ class DeviceSpanDialog(AskingDialog):
         self.channels.itemChanged.connect(self._ask.start)
         self.act.chosen.connect(self._act_chosen)
         self.back.clicked.connect(self._take_back)
+        self.every.clicked.connect(self._tick_every)
         self.spans.itemSelectionChanged.connect(self._span_chosen)
         self._act_chosen(LEAVE_OUT)
         self._span_chosen()
@@ -135,6 +141,11 @@ class DeviceSpanDialog(AskingDialog):
         """The channels that are ticked."""
         items = [self.channels.item(n) for n in range(self.channels.count())]
         return tuple(str(i.data(Qt.ItemDataRole.UserRole)) for i in items if i.checkState() == Qt.CheckState.Checked)
+
+    def _tick_every(self) -> None:
+        """A clock that was off was off for all that the device wrote."""
+        for n in range(self.channels.count()):
+            self.channels.item(n).setCheckState(Qt.CheckState.Checked)
 
     # what is meant
 
