@@ -35,7 +35,7 @@ def value_words(entry: Entry | None, reader: Reader) -> str:
     if kind is Kind.INSTANT and entry.number is not None:
         return wall(int(entry.number), reader.zone)
     if kind is Kind.MARK:
-        return entry.words or translate("later", "yes")
+        return quantity(entry.channel, entry.words) if entry.words else translate("later", "yes")
     value = entry.number if kind is Kind.NUMBER else entry.words
     return quantity(entry.channel, value, reader.gas_unit)
 

@@ -12,7 +12,7 @@ from app.episode.limits import bands_of
 from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.episode_shown import EpisodeOnScreen
-from app.formats import clock
+from app.formats import clock, quantity
 from app.headline import lost_gain, response_state_word, sign_of, verdict_with_loss
 from app.later_words import later_word
 from app.panels import Panel
@@ -177,7 +177,8 @@ def _events(on: EpisodeOnScreen) -> Iterator[Tick]:
         words = on.record.text(channel.key).until(on.course.until)
         for t, text in zip(words.t, words.v, strict=True):
             name = channel_name(channel.key)
-            found.append(Tick(int(t), f"{name}: {text}" if text else name, payload=channel.key))
+            word = f"{name}: {quantity(channel.key, text)}" if text else name
+            found.append(Tick(int(t), word, payload=channel.key))
     yield from sorted((*found, *_came_later(on)), key=lambda tick: tick.at)
 
 
