@@ -7,8 +7,8 @@ from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from app import formats
+from app.phrases import channel_name
 from app.words import Reader
-from core.record.channels import CHANNELS
 from core.record.entries import Action, NewEntry
 
 if TYPE_CHECKING:
@@ -23,14 +23,10 @@ def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[
     for draft in intake.entries:
         e = draft.entry
         what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(e.action, words["new"])
-        yield "", f"{what}, {_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
+        yield "", f"{what}, {channel_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
     for (episode, channel), span in intake.spans.items():
         when = f"{told.time(span.first)} - {told.time(span.last)}"
-        yield "", f"{words['new']}, {_name(channel)}", f"{span.count:,} {words['samples']}", f"{episode}, {when}"
-
-
-def _name(channel: str) -> str:
-    return CHANNELS[channel].name if channel in CHANNELS else channel
+        yield "", f"{words['new']}, {channel_name(channel)}", f"{span.count:,} {words['samples']}", f"{episode}, {when}"
 
 
 def _value(e: NewEntry) -> str:
