@@ -11,6 +11,7 @@ an envelope that was altered with care. A page of the store that fails afterward
 
 from __future__ import annotations
 
+import errno
 import hmac
 import json
 import os
@@ -216,12 +217,15 @@ def write_envelope(path: Path, text: str) -> None:
 
 
 def sync_folder(folder: Path) -> None:
-    """Ask the disk to keep the names in a folder. Windows cannot and need not."""
+    """Ask the disk to keep the names in a folder. Windows, and some file systems, cannot and need not."""
     if os.name == "nt":
         return
     descriptor = os.open(folder, os.O_RDONLY)
     try:
         os.fsync(descriptor)
+    except OSError as error:
+        if error.errno not in (errno.EINVAL, errno.ENOTSUP):
+            raise
     finally:
         os.close(descriptor)
 
