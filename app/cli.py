@@ -136,6 +136,8 @@ def _about_files(intake: argparse.ArgumentParser) -> None:
                         help="seconds to add to every time of a device whose clock is off")  # fmt: skip
     intake.add_argument("--sheet", default="", help="the sheet of a spreadsheet; the first when left out")
     intake.add_argument("--encoding", default="", help="how a table's text is encoded; found when left out")
+    intake.add_argument("--header-line", type=int, default=0, metavar="N",
+                        help="the line of a table's header; found when left out")  # fmt: skip
     intake.add_argument("--leave-out-refused", action="store_true",
                         help="take the file without its refused rows; which ones is recorded")  # fmt: skip
 

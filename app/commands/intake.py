@@ -77,7 +77,7 @@ def _check_there(files: list[Path]) -> None:
 def _request(context: Context, path: Path, args: argparse.Namespace) -> operations.ReadRequest:
     return operations.ReadRequest(
         path, None, args.mapping, args.episode, dict(args.patient), context.local_zone(), args.clock_shift, args.leak,
-        args.sheet, args.encoding,
+        args.sheet, args.encoding, args.header_line,
     )  # fmt: skip
 
 

@@ -21,6 +21,7 @@ from app.failure import Failure
 from app.fitted import FittedDialog, fit
 from app.intake_window.answers_form import AnswersForm
 from app.intake_window.column_table import ColumnTable
+from app.intake_window.how_written import HowWritten
 from app.intake_window.preview_table import PreviewTable
 from app.operations import mapping as operations
 from app.operations.intake import ReadRequest
@@ -47,13 +48,14 @@ class MappingDialog(FittedDialog):
     ) -> None:  # fmt: skip
         super().__init__(parent)
         self._given = given
+        self._said = ("", "", 0)
         self._model, self._path, self._reader, self._theme = model, path, reader, theme
         self.looked: Looked | None = None
         self.mapping = Mapping()
         self.setWindowTitle(self.tr("Take in {name}").format(name=path.name))
-        self.intro, self.asked, self.preview_word = QLabel(), QLabel(), QLabel()
-        self.sheet, self.kept = QComboBox(), QComboBox()
-        self._labels: dict[QComboBox, QLabel] = {}
+        self.asked, self.preview_word = QLabel(), QLabel()
+        self.written, self.kept = HowWritten(theme), QComboBox()
+        self.sheet = self.written.sheet
         self.columns = ColumnTable(theme, reader)
         self.answers = AnswersForm(theme)
         self.preview = PreviewTable(theme, reader)
@@ -67,7 +69,7 @@ class MappingDialog(FittedDialog):
         self.buttons.rejected.connect(self.reject)
         self.columns.changed.connect(self._column_changed)
         self.answers.changed.connect(self._answered)
-        self.sheet.activated.connect(self._look_again)
+        self.written.changed.connect(self._look_again)
         self.kept.activated.connect(self._take_kept)
         fit(self, theme, 1240, 820)
         self._ask()
@@ -76,10 +78,8 @@ class MappingDialog(FittedDialog):
 
     def _lay_out(self) -> None:
         px = self._theme.px
-        self.intro.setWordWrap(True)
         self.asked.setWordWrap(True)
-        for label in (self.intro, self.asked):
-            label.setTextFormat(Qt.TextFormat.PlainText)
+        self.asked.setTextFormat(Qt.TextFormat.PlainText)
         self.asked.setProperty("role", "strong")
         self.preview_word.setText(self.tr("The first rows as they will be recorded"))
         self.preview_word.setProperty("role", "emphasis")
@@ -87,7 +87,6 @@ class MappingDialog(FittedDialog):
         self.name.setPlaceholderText(self.tr("a name, to be recognised next time"))
         self.name.setAccessibleName(self.tr("Keep as"))
         self.name.setMaxLength(80)
-        self.sheet.setAccessibleName(self.tr("Sheet"))
         self.kept.setAccessibleName(self.tr("Mapping"))
         column = QVBoxLayout(self)
         column.setContentsMargins(px(20), px(16), px(20), px(16))
@@ -101,15 +100,13 @@ class MappingDialog(FittedDialog):
 
     def _head(self) -> QHBoxLayout:
         head = QHBoxLayout()
-        head.addWidget(self.intro, 1)
-        for word, box in ((self.tr("Sheet"), self.sheet), (self.tr("Mapping"), self.kept)):
-            label = QLabel(word)
-            label.setProperty("role", "quiet")
-            label.setBuddy(box)
-            self._labels[box] = label
-            head.addWidget(label)
-            head.addWidget(box)
-            box.setMinimumContentsLength(14)
+        head.addWidget(self.written, 1)
+        self._kept_label = QLabel(self.tr("Mapping"))
+        self._kept_label.setProperty("role", "quiet")
+        self._kept_label.setBuddy(self.kept)
+        self.kept.setMinimumContentsLength(14)
+        head.addWidget(self._kept_label)
+        head.addWidget(self.kept)
         return head
 
     def _halves(self) -> QHBoxLayout:
@@ -136,24 +133,26 @@ class MappingDialog(FittedDialog):
 
     # looking
 
-    def _ask(self, sheet: str = "") -> None:
+    def _ask(self, sheet: str = "", encoding: str = "", header_at: int = 0) -> None:
         self.asked.setText(self.tr("Looking at {name}. Nothing is recorded yet.").format(name=self._path.name))
-        request = LookRequest(self._path, self._model.session.zone, sheet)
+        request = LookRequest(self._path, self._model.session.zone, sheet, encoding, header_at)
         self._model.ask(operations.look, request, done=self._show, failed=self._failed)
 
     def _look_again(self) -> None:
-        self._ask(str(self.sheet.currentData() or ""))
+        """A person says how it is written: where the header stands is found anew in another sheet."""
+        sheet, encoding, header_at = self.written.said
+        dialect = self.looked.table.dialect if self.looked is not None else None
+        self._said = (sheet, encoding, 0 if dialect is not None and sheet != dialect.sheet else header_at)
+        self._ask(*self._said)
 
     def _show(self, outcome: Outcome[Looked]) -> None:
         looked = self.looked = outcome.value
-        for box, words in ((self.sheet, looked.table.sheets), (self.kept, ("", *looked.kept))):
-            box.clear()
-            for word in words:
-                box.addItem(word or self.tr("as proposed"), word)
-        self.sheet.setCurrentIndex(max(0, self.sheet.findData(looked.table.dialect.sheet)))
-        for box, matters in ((self.sheet, len(looked.table.sheets) > 1), (self.kept, bool(looked.kept))):
-            box.setVisible(matters)
-            self._labels[box].setVisible(matters)
+        self.written.show_table(looked.table)
+        self.kept.clear()
+        for word in ("", *looked.kept):
+            self.kept.addItem(word or self.tr("as proposed"), word)
+        for widget in (self.kept, self._kept_label):
+            widget.setVisible(bool(looked.kept))
         known = looked.recognised
         given = self._given
         if given is not None and given.mapping is not None and given.mapping.header == looked.table.header:
@@ -246,7 +245,6 @@ class MappingDialog(FittedDialog):
 
         asked = self.questions()
         self.go.setEnabled(not asked)
-        self.intro.setText(self._about())
         if asked:
             more = self.tr(" ({count} more to answer)").format(count=len(asked) - 1) if len(asked) > 1 else ""
             self.asked.setText(sentence(asked[0], self._reader) + more)
@@ -255,25 +253,14 @@ class MappingDialog(FittedDialog):
         answers = Answers(self.answers.episode_key, self.answers.shift.value())
         self.preview.show_rows(preview(self.looked.table, self.mapping, answers))
 
-    def _about(self) -> str:
-        """How the table is written, in a line."""
-        if self.looked is None:
-            return ""
-        d, count = self.looked.table.dialect, len(self.looked.table.header)
-        if self.looked.table.book is not None:
-            return self.tr("{count} columns, header on row {line}").format(count=count, line=d.header_line)
-        marks = {",": self.tr("comma"), ";": self.tr("semicolon"), "\t": self.tr("tab"), "|": self.tr("bar")}
-        sure = "" if d.encoding_is_sure else self.tr(" (assumed: look at letters with accents)")
-        text = self.tr("{count} columns apart by {mark}, header on line {line}, text in {encoding}{sure}")
-        return text.format(count=count, mark=marks[d.delimiter], line=d.header_line, encoding=d.encoding.upper(),
-                           sure=sure)  # fmt: skip
-
     def _go_on(self) -> None:
         self.mapping = replace(self.mapping, name=self.name.text().strip())
         if self.mapping.name:
             self._model.ask(operations.keep, self.mapping, failed=self._failed)
+        sheet, encoding, header_at = self._said
+        sheet = sheet or (self.looked.table.dialect.sheet if self.looked is not None else "")
         request = ReadRequest(self._path, self.mapping, "", self.answers.episode_key, {}, self._model.session.zone,
-                              self.answers.shift.value(), "", str(self.sheet.currentData() or ""))  # fmt: skip
+                              self.answers.shift.value(), "", sheet, encoding, header_at)  # fmt: skip
         self.accept()
         self.ready.emit(request)
 

@@ -26,7 +26,8 @@ def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[
         yield "", f"{what}, {channel_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
     for (episode, channel), span in intake.spans.items():
         when = f"{told.time(span.first)} - {told.time(span.last)}"
-        yield "", f"{words['new']}, {channel_name(channel)}", f"{span.count:,} {words['samples']}", f"{episode}, {when}"
+        what = f"{words['new']}, {channel_name(channel)}"
+        yield "", what, f"{span.count:,} {words['samples']}", f"{episode}, {when}"
 
 
 def _value(e: NewEntry) -> str:

@@ -76,8 +76,17 @@ def _encoding(head: bytes, *, is_whole: bool) -> tuple[str, bool]:
         head.decode("utf-8")
     except UnicodeDecodeError as error:
         if is_whole or error.start < len(head) - 4:
-            return "cp1252", False
+            return _one_byte_encoding(head), False
     return "utf-8", True
+
+
+def _one_byte_encoding(head: bytes) -> str:
+    """The Windows encoding, where every byte is a letter of it; else that of old DOS programs, in which each is."""
+    try:
+        head.decode("cp1252")
+    except UnicodeDecodeError:
+        return "cp437"
+    return "cp1252"
 
 
 def _delimiter(lines: list[str]) -> str:

@@ -7,8 +7,10 @@ from PySide6.QtCore import QPoint, QPointF, Qt
 from PySide6.QtGui import QWheelEvent
 from PySide6.QtWidgets import QApplication, QComboBox
 
+from app.cli import main
 from app.dialogs.intake import IntakeDialog
 from app.intake_window.mapping_dialog import MappingDialog
+from storage.store import Store
 from tests.support.hl7_messages import gas, message
 from tests.support.open_window import make_store, open_window, settled, until
 
@@ -182,3 +184,49 @@ def test_what_will_be_recorded_is_listed_before_it_is(qtbot, window, tmp_path):
     assert ["new, PaCO2", "8.1 kPa", "bed-7, 28-Mar-2026 04:25"] in rows
     assert ["new, pH", "7.31", "bed-7, 28-Mar-2026 04:25"] in rows
     dialog.reject()
+
+
+def test_encoding_and_header_are_shown_and_may_be_said_otherwise(qtbot, window, tmp_path):
+    path = tmp_path / "old.csv"
+    path.write_bytes("Ward 4;;\nTime;pH;Remark\n28.03.2026 01:10;7,31;sp\u00e4t\n".encode("cp437"))
+    dialog = open_mapping(qtbot, window, path)
+    assert dialog.written.encoding.currentData() == "cp1252"
+    assert "assumed" in dialog.written.about.text()
+    choose(dialog.written.encoding, "cp437")
+    until(qtbot, lambda: dialog.looked.table.dialect.encoding == "cp437")
+    assert "assumed" not in dialog.written.about.text()
+    assert dialog.columns.item(2, 1).text() == "sp\u00e4t"
+    assert dialog.written.header.value() == 2
+    dialog.written.header.setValue(3)
+    until(qtbot, lambda: "rows" in dialog.asked.text())
+    assert not dialog.go.isEnabled()
+    dialog.written.header.setValue(2)
+    until(qtbot, lambda: dialog.mapping.header == ("Time", "pH", "Remark"))
+    choose(dialog.answers.episode, "bed-7")
+    dialog.go.click()
+    intake = visible(window, IntakeDialog)
+    until(qtbot, lambda: intake.intake is not None)
+    assert [d.entry.words for d in intake.intake.entries if d.entry.channel == "note"] == ["sp\u00e4t"]
+    assert intake.intake.source.facts["encoding"] == "cp437"
+    assert not intake.intake.doubts
+    intake.reject()
+
+
+def test_the_command_line_reads_by_the_mapping_that_the_window_kept(qtbot, window, gases, tmp_path, capsys):
+    dialog = open_mapping(qtbot, window, gases)
+    choose(dialog.columns.box_of("pCO2", unit=True), "kPa")
+    choose(dialog.answers.episode, "bed-7")
+    dialog.name.setText("analyser ward 4")
+    dialog.go.click()
+    intake = visible(window, IntakeDialog)
+    until(qtbot, lambda: intake.intake is not None)
+    shown = [(d.entry.channel, d.entry.at, d.entry.raw, d.entry.number) for d in intake.intake.entries]
+    intake.reject()
+    settled(qtbot, window)
+    store = str(tmp_path / "ward.luffmark")
+    assert main(["--store", store, "--by", "AB", "intake", str(gases), "--episode", "bed-7"]) == 0
+    with Store.open(tmp_path / "ward.luffmark") as opened:
+        source = opened.sources()[-1]
+        found = [(e.channel, e.at, e.raw, e.number) for e in opened.source_entries(source.id)]
+    assert sorted(map(str, found)) == sorted(map(str, shown))
+    assert source.facts["mapping"] == "analyser ward 4"

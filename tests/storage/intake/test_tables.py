@@ -353,3 +353,13 @@ def test_column_uses_may_be_changed_one_by_one() -> None:
     mapping = Mapping(columns=(ColumnUse("a", "ph", "pH"),))
     assert mapping.with_column("a", "").used == ()
     assert mapping.with_column("b", "rr", "/min").used[1] == ColumnUse("b", "rr", "/min")
+
+
+def test_a_text_of_an_old_program_is_told_from_one_of_windows(write: Write, tmp_path: Path) -> None:
+    """A byte that is no letter of cp1252 (0x81 is u with two dots in cp437) rules it out; both stay an assumption."""
+    for encoding, text in (("cp437", "müde"), ("cp1252", "müde"), ("cp1252", "€ 5")):
+        path = tmp_path / "a.csv"
+        path.write_bytes(f"time,pH,note\n2026-03-28 00:30,7.4,{text}\n".encode(encoding))
+        table = open_table(path)
+        assert (table.dialect.encoding, table.dialect.encoding_is_sure) == (encoding, False)
+        assert table.column("note") == (text,)
