@@ -7,6 +7,7 @@ from html import escape
 
 from app.certainty import certainty_words
 from app.explain import Explanation, translate
+from app.formats import unbroken
 from app.theme import Theme
 
 
@@ -43,7 +44,7 @@ def _parts(e: Explanation, theme: Theme) -> Iterator[str]:
 
 def _headed(head: str, lines: tuple[str, ...], theme: Theme, *, strong: bool = False) -> str:
     weight = "; font-weight:600" if strong else ""
-    body = "".join(f'<p style="margin-top:0; margin-bottom:2px{weight}">{escape(line)}</p>' for line in lines)
+    body = "".join(f'<p style="margin-top:0; margin-bottom:2px{weight}">{escape(unbroken(line))}</p>' for line in lines)
     return _heading(head, theme) + body
 
 

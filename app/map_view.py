@@ -22,6 +22,7 @@ from app.chart.acid_base_map import AcidBaseMap
 from app.chart.shapes import MapGas, MapSpec
 from app.copying import can_be_copied
 from app.episode_shown import EpisodeOnScreen
+from app.formats import opened, unbroken
 from app.map_words import class_words, map_spec, map_table, response_words, steps_of, titled_spec
 from app.phrases import gas_name, gas_words
 from app.tables import Table
@@ -185,10 +186,10 @@ class MapView(QWidget):
         parts = [f'<p style="{quiet}; margin:0">{escape(head)}</p>',
                  f'<p style="font-size:{theme.px(theme.type.emphasis)}px; font-weight:600; margin:2px 0">'
                  f"{escape(class_words(p, reader))}</p>",
-                 f'<p style="margin:2px 0">{escape(gas_words(p.gas, reader.gas_unit))}</p>']  # fmt: skip
-        parts += [f'<p style="{quiet}; margin:1px 0">{escape(step)}</p>' for step in steps_of(p, reader)]
+                 f'<p style="margin:2px 0">{escape(unbroken(gas_words(p.gas, reader.gas_unit)))}</p>']  # fmt: skip
+        parts += [f'<p style="{quiet}; margin:1px 0">{escape(unbroken(step))}</p>' for step in steps_of(p, reader)]
         if told := response_words(p, reader):
-            parts.append(f'<p style="margin:4px 0 0 0"><b>{escape(told[:1].upper() + told[1:])}</b></p>')
+            parts.append(f'<p style="margin:4px 0 0 0"><b>{escape(unbroken(opened(told)))}</b></p>')
         return "".join(parts)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:

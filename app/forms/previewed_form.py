@@ -26,6 +26,7 @@ from PySide6.QtWidgets import (
 
 from app.failure import Failure
 from app.fitted import FittedDialog, fit
+from app.formats import unbroken
 from app.forms.cells import Card
 from app.forms.typed import fields_of, put, read
 from app.operations.outcome import Outcome
@@ -247,9 +248,9 @@ class PreviewedForm(FittedDialog):
     def _html(self) -> str:
         quiet = self.theme.colours.ink_quiet
         (head, what, effects), questions = self.told(), self.questions()
-        text = f"<b>{escape(head)}:</b> {escape(what)}."
+        text = f"<b>{escape(head)}:</b> {escape(unbroken(what))}."
         if effects:
-            text += f" <span style='color:{quiet}'>{escape(effects)}</span>"
+            text += f" <span style='color:{quiet}'>{escape(unbroken(effects))}</span>"
         ask = self.tr("Enter asks once more.") if questions else self.tr("Enter records.")
         strong = f" <b>{escape(' '.join(questions))}</b>" if questions else ""
         return f"{text}{strong} <span style='color:{quiet}'>{escape(ask)}</span>"

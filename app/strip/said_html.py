@@ -6,6 +6,7 @@ from html import escape
 
 from PySide6.QtCore import QCoreApplication
 
+from app.formats import unbroken
 from app.strip.preview_words import PreviewWords
 
 translate = QCoreApplication.translate
@@ -13,17 +14,17 @@ translate = QCoreApplication.translate
 
 def quiet(text: str, colour: str) -> str:
     """Words that stand back."""
-    return f"<span style='color:{colour}'>{escape(text)}</span>"
+    return f"<span style='color:{colour}'>{escape(unbroken(text))}</span>"
 
 
 def marked(strong: str, rest: str) -> str:
     """What matters first, and the rest."""
-    return f"<b>{escape(strong)}</b> {escape(rest)}"
+    return f"<b>{escape(unbroken(strong))}</b> {escape(unbroken(rest))}"
 
 
 def preview_html(words: PreviewWords, ink_quiet: str) -> str:
     """For whom and when, each value, what can act, and what is asked or how to record."""
-    text = f"<b>{escape(words.head)}:</b> {escape(', '.join(words.values))}."
+    text = f"<b>{escape(words.head)}:</b> {escape(unbroken(', '.join(words.values)))}."
     if words.effects:
         text += f" {quiet(' '.join(words.effects), ink_quiet)}"
     if words.questions:
