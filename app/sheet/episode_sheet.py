@@ -9,7 +9,7 @@ from app.formats import ABSENT
 from app.sheet.blocks import Block, Column, Facts, Flag, Heading, SideBySide, Table, Text
 from app.sheet.gas_table import HEADINGS, GasRow
 from app.sheet.press import BODY, SMALL, STRONG, Align
-from app.sheet.shapes import EpisodePage, Fact, FlagLine
+from app.sheet.shapes import TIERS, EpisodePage, Fact, FlagLine, PageBrevity
 from app.sheet.writer import lowered
 
 _CHART_KEY: Final = (
@@ -49,9 +49,10 @@ def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
     yield Heading(heading, _left_out(b.gases_out, "earlier gas"))
     gases = page.gases[b.gases_out :]
     yield gas_table(gases) if gases else Text("No gas recorded this shift or before it.")
-    yield Heading("Flags, open and settled")
-    yield from flag_blocks(page.flags, weaker=not b.weaker_evidence, evidence_of=b.evidence_of)
-    due: tuple[Block, ...] = (Heading("Due in the next 4 h, and overdue"), *_texts(page.due, "Nothing is due."))
+    yield Heading("Flags, open and settled", _hidden(page))
+    yield from flag_blocks(page.flags, b)
+    said = [line.partition(": ")[0] for line in page.due] if b.due else page.due
+    due: tuple[Block, ...] = (Heading("Due in the next 4 h, and overdue"), *_texts(said, "Nothing is due."))
     decides = Heading("Levers that could act", "a qualified person decides")
     levers: tuple[Block, ...] = (decides, *_texts(page.levers, "None by what is recorded."))
     yield SideBySide(due, levers)
@@ -79,28 +80,29 @@ def _texts(lines: Iterable[str], none: str) -> tuple[Block, ...]:
     return tuple(Text(line) for line in lines) or (Text(none),)
 
 
-def flag_blocks(flags: tuple[FlagLine, ...], *, weaker: bool, evidence_of: frozenset[str]) -> Iterator[Block]:
-    """Open flags each in a row, the strongest of each group first; those closed this shift in one paragraph.
+def _hidden(page: EpisodePage) -> str:
+    """Whose evidence the page leaves to the record."""
+    rows = [f for f in page.flags if f.is_open and (f.is_strongest or not page.brief.weaker_evidence)]
+    hidden = [t for t in TIERS if t not in page.brief.evidence_of and any(f.tier == t for f in rows)]
+    return f"evidence and sources of the flags of {' and '.join(hidden)}: {_RECORD}" if hidden else ""
 
-    `weaker`: those under a stronger one have rows of their own too, else they are named in one line.
-    """
+
+def flag_blocks(flags: tuple[FlagLine, ...], brief: PageBrevity) -> Iterator[Block]:
+    """Open flags each in a row, the strongest of each group first; those closed this shift in one paragraph."""
     opened = [f for f in flags if f.is_open]
-    rows = [f for f in opened if f.is_strongest or weaker]
-    yield from (_flag(f, evidence=True) for f in rows if f.tier in evidence_of)
-    alone = [_flag(f, evidence=False) for f in rows if f.tier not in evidence_of]
+    rows = [f for f in opened if f.is_strongest or not brief.weaker_evidence]
+    yield from (_flag(f, evidence=True) for f in rows if f.tier in brief.evidence_of)
+    alone = [_flag(f, evidence=False) for f in rows if f.tier not in brief.evidence_of]
     yield from (SideBySide(tuple(alone[n : n + 1]), tuple(alone[n + 1 : n + 2])) for n in range(0, len(alone), 2))
     under = [f for f in opened if f not in rows]
     if under:
         yield Text(f"Under these, counted once: {'; '.join(f.head for f in under)}.")
-    hidden = [t for t in ("escalate", "concern", "remark") if t not in evidence_of and any(f.tier == t for f in rows)]
-    if hidden:
-        yield Text(f"Evidence and sources of the flags of {' and '.join(hidden)}: {_RECORD}.", SMALL)
     closed = [f for f in flags if not f.is_open]
     if closed:
         for head, found in (("Settled", True), ("No longer met", False)):
             told = [f for f in closed if f.is_settled is found]
             if told:
-                yield Text(f"{head}: {'; '.join(_closed(told))}.")
+                yield Text(f"{head}: {'; '.join(_closed(told, times=found or not brief.ended))}.")
     if not flags:
         yield Text("No flag was open or raised this shift.")
 
@@ -111,13 +113,14 @@ def _flag(flag: FlagLine, *, evidence: bool) -> Flag:
     return Flag(tier.lower(), head, shown, STRONG if flag.is_strongest else BODY)
 
 
-def _closed(flags: Iterable[FlagLine]) -> Iterator[str]:
-    """Each marker once, with every time it was met."""
+def _closed(flags: Iterable[FlagLine], *, times: bool) -> Iterator[str]:
+    """Each marker once, with every time it was met, or with how often."""
     spells: dict[str, list[str]] = {}
     for flag in flags:
         spells.setdefault(flag.marker, []).append(flag.spell)
-    for marker, times in spells.items():
-        yield f"{marker} {', '.join(times)}"
+    for marker, found in spells.items():
+        often = f" {len(found)} times" if len(found) > 1 else ""
+        yield f"{marker} {', '.join(found)}" if times else f"{marker}{often}"
 
 
 def gas_table(gases: tuple[GasRow, ...]) -> Table:

@@ -9,7 +9,7 @@ from app.sheet.blocks import Block, Heading, RuledBox, Signatures, Text, draw_al
 from app.sheet.chart_print import ChartBlock
 from app.sheet.episode_sheet import lower_blocks, upper_blocks
 from app.sheet.press import STRONG, Press
-from app.sheet.shapes import EpisodePage
+from app.sheet.shapes import TIERS, EpisodePage, PageBrevity
 
 SCALES = (1.06, 1.03, 1.0, 0.97, 0.94, 0.92, 0.9)
 """Print is made no smaller: what has no room then is said shorter."""
@@ -57,7 +57,7 @@ def fit_episode(page: EpisodePage, press: Press, room: Room) -> Fitted:
     for said in shorter(page):
         fitted = _at_scale(said, smallest, room, LEAST_CHART)
         if fitted is not None:
-            return fitted
+            return _given_back(said, fitted, smallest, room)
     return _on_more_pages(said, smallest, room)
 
 
@@ -74,10 +74,35 @@ def shorter(page: EpisodePage) -> Iterator[EpisodePage]:
         yield replace(page, brief=(brief := replace(brief, gases_out=out)))
     for short in range(brief.changes + 1, len(page.changes)):
         yield replace(page, brief=(brief := replace(brief, changes=short)))
+    yield replace(page, brief=(brief := replace(brief, due=True)))
     for tiers in ({"escalate", "concern"}, {"escalate"}, set[str]()):
         yield replace(page, brief=(brief := replace(brief, evidence_of=frozenset(tiers))))
+    yield replace(page, brief=(brief := replace(brief, ended=True)))
     for out in range(1, brief.changes - _FEWEST_SHORT + 1):
         yield replace(page, brief=(brief := replace(brief, changes_out=out)))
+
+
+def _given_back(page: EpisodePage, fitted: Fitted, press: Press, room: Room) -> Fitted:
+    """What the last step saved more than was needed goes to what was shortened before it, the most missed first."""
+    for whole in _longer(page):
+        if (found := _at_scale(whole, press, room, LEAST_CHART)) is not None:
+            return _given_back(whole, found, press, room)
+    return fitted
+
+
+def _longer(page: EpisodePage) -> Iterator[EpisodePage]:
+    """The page with one thing said whole again."""
+    b, usual = page.brief, PageBrevity()
+    for short in range(b.changes_out, b.changes):
+        yield replace(page, brief=replace(b, changes=short))
+    for more in (t for t in TIERS if t not in b.evidence_of):
+        yield replace(page, brief=replace(b, evidence_of=b.evidence_of | {more}))
+    for whole in (
+        replace(b, due=False), replace(b, ended=False), replace(b, since=False), replace(b, gases_out=0),
+        replace(b, weaker_evidence=False), replace(b, checks=usual.checks),
+    ):  # fmt: skip
+        if whole != b:
+            yield replace(page, brief=whole)
 
 
 def _at_scale(page: EpisodePage, press: Press, room: Room, least: float) -> Fitted | None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass, field
 from enum import Enum
 from functools import lru_cache
@@ -14,6 +15,7 @@ from app.formats import unbroken
 POINTS_PER_INCH = 72
 INK, GREY, PALE, LINE = "#000000", "#444444", "#e9e9e9", "#8a8a8a"
 _TALL = 1e6
+_STROKE = re.compile(r"(?<=\w)/(?=\w)")
 
 
 class Align(Enum):
@@ -76,7 +78,7 @@ class Press:
         """How high a text is when set in a width."""
         key = (text, style, width, align)
         if key not in self._heights:
-            self._heights[key] = self._measured(unbroken(text), style, width, align)
+            self._heights[key] = self._measured(_kept_together(text), style, width, align)
         return self._heights[key]
 
     def _measured(self, text: str, style: Style, width: float, align: Align) -> float:
@@ -96,7 +98,7 @@ class Press:
     ) -> float:
         """Set a text in a width, wrapped between values and never inside one; its height."""
         high = self.height(text, style, width, align)
-        text = unbroken(text)
+        text = _kept_together(text)
         self.painter.setFont(_font(self._pixels(style), style.bold))
         self.painter.setPen(QColor(style.ink))
         rect = QRectF(x * self.unit, y * self.unit, width * self.unit, (high + 2) * self.unit)
@@ -161,6 +163,12 @@ class Press:
         longest = max((self.width(w, style) for w in text.split()), default=0.0)
         wrap = Qt.TextFlag.TextWrapAnywhere if longest > width else Qt.TextFlag.TextWordWrap
         return int(align.value) | int(Qt.AlignmentFlag.AlignTop) | int(wrap)
+
+
+@lru_cache(maxsize=4096)
+def _kept_together(text: str) -> str:
+    """A text whose lines end neither inside a value nor at a stroke, as in P/F or 24/min."""
+    return _STROKE.sub("/\N{WORD JOINER}", unbroken(text))
 
 
 @lru_cache(maxsize=64)

@@ -9,6 +9,7 @@ from app.sheet.chart_data import ShiftChart
 from app.sheet.gas_table import GasRow
 
 Fact = tuple[str, str]
+TIERS = ("escalate", "concern", "remark")
 
 
 @dataclass(frozen=True, slots=True)
@@ -98,6 +99,10 @@ class PageBrevity:
 
     since: bool = False
     """Flags raised and gone since the last handover are counted, not named twice."""
+    due: bool = False
+    """Due items without their reasons."""
+    ended: bool = False
+    """Flags no longer met by their names alone."""
     weaker_evidence: bool = False
     """Evidence of flags that stand under a stronger one is left to the record."""
     checks: int = 0
@@ -107,7 +112,7 @@ class PageBrevity:
     changes_out: int = 0
     gases_out: int = 0
     """So many of the oldest are left out."""
-    evidence_of: frozenset[str] = frozenset({"escalate", "concern", "remark"})
+    evidence_of: frozenset[str] = frozenset(TIERS)
     """Tiers whose flags stand with their evidence; that of the others is left to the record."""
 
 

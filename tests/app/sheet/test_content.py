@@ -15,7 +15,7 @@ from app.plain_handover import handover_text
 from app.sheet.blocks import Text
 from app.sheet.content import sheet_content
 from app.sheet.episode_sheet import flag_blocks
-from app.sheet.shapes import EpisodePage, SheetContent, WardRow
+from app.sheet.shapes import EpisodePage, PageBrevity, SheetContent, WardRow
 from app.sheet.writer import is_limited, limits_of_care
 from app.theme import LIGHT
 from app.words import Reader
@@ -139,7 +139,7 @@ def test_what_is_closed_says_whether_anybody_settled_it(content: SheetContent) -
     closed = [f for f in page.flags if not f.is_open]
     assert closed
     assert not any(f.is_settled for f in closed)
-    told = [b.words for b in flag_blocks(page.flags, weaker=True, evidence_of=frozenset()) if isinstance(b, Text)]
+    told = [b.words for b in flag_blocks(page.flags, PageBrevity()) if isinstance(b, Text)]
     assert any(t.startswith("No longer met: ") for t in told)
     assert not any(t.startswith("Settled") for t in told)
 
