@@ -1,8 +1,9 @@
-"""`luffmark` alone: the window, on the store named or the user's own."""
+"""`luffmark` alone: the window, on the store named, else the one opened last, else the user's own."""
 
 from __future__ import annotations
 
 import argparse
+from pathlib import Path
 
 from app.commands.context import Context
 
@@ -11,6 +12,15 @@ def run(context: Context, args: argparse.Namespace) -> int:
     """Open the window; the first page where there is no store yet. Ends when it is closed."""
     from app.start import run_window
 
-    there = context.store_given or context.store_path.exists()
     by = getattr(args, "by", "") or ""
-    return run_window(context.store_path if there else None, context.passphrase(), by)
+    return run_window(_store(context), context.passphrase(), by)
+
+
+def _store(context: Context) -> Path | None:
+    """Which store: after a restore that is the new one, not the damaged one that still lies in the usual place."""
+    from app import preferences as kept
+
+    if context.store_given:
+        return context.store_path
+    recent = [Path(path) for path in kept.load(kept.default_path()).recent_stores]
+    return next((path for path in (*recent, context.store_path) if path.is_file()), None)

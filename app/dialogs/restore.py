@@ -110,6 +110,7 @@ def restored_words(made: backups.Restored, reader: Reader) -> list[str]:
         return [*lines, sentence(made.not_compared, reader)]
     if made.newer is None:
         return lines
+    lines.append(_tr("The old store and its backups are left as they are, until somebody removes them."))
     if not made.same:
         lines.append(_tr("The old store does not continue this backup: their chains differ."))
     if made.newer.damaged:
@@ -134,7 +135,7 @@ def _newer_words(made: backups.Restored, reader: Reader) -> list[str]:
         lines.append(_tr("Only the newest {count} entries are listed one by one.").format(count=MOST_TOLD))
     if made.newer.others:
         lines.append(_tr("Beside these, documents, policies and sign-ins: {count}").format(count=made.newer.others))
-    lines += ["", _tr("The old file is left as it is. 'Save from a damaged store' keeps these entries too.")]
+    lines += ["", _tr("'Save from a damaged store' keeps these entries too.")]
     return lines
 
 
