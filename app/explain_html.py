@@ -44,7 +44,8 @@ def _parts(e: Explanation, theme: Theme) -> Iterator[str]:
 
 def _headed(head: str, lines: tuple[str, ...], theme: Theme, *, strong: bool = False) -> str:
     weight = "; font-weight:600" if strong else ""
-    body = "".join(f'<p style="margin-top:0; margin-bottom:2px{weight}">{escape(unbroken(line))}</p>' for line in lines)
+    style = f"margin-top:0; margin-bottom:2px{weight}"
+    body = "".join(f'<p style="{style}">{escape(unbroken(line))}</p>' for line in lines)
     return _heading(head, theme) + body
 
 

@@ -6,7 +6,7 @@ import argparse
 from pathlib import Path
 
 from app.commands.context import Context
-from app.formats import day
+from app.formats import counted, day
 from app.operations import archive as operations
 from app.words import sentence
 from core.record.instant import iso
@@ -24,7 +24,9 @@ def run(context: Context, args: argparse.Namespace) -> int:
             path, *episodes = args.subjects or [""]
             request = operations.ArchiveRequest(Path(path), tuple(episodes))
             made = operations.write(store, who, now, request).value
-            text = f"{path}: {len(made.episodes)} episode(s), {made.entries} entries, {made.samples} device samples."
+            parts = (counted(len(made.episodes), "episode", "episodes"), counted(made.entries, "entry", "entries"),
+                     counted(made.samples, "device sample", "device samples"))  # fmt: skip
+            text = f"{path}: {', '.join(parts)}."
         elif args.what == "retention":
             days = args.subjects[0] if args.subjects else ""
             if not days.isdigit():

@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
-from app.formats import plain
+from app.formats import counted, plain
 from app.operations import intake as operations
 from app.operations.outcome import watched
 from app.words import Reader, sentence
@@ -102,8 +102,9 @@ def _take(
     request = operations.TakeRequest(intake, leave_out)
     made = operations.take(store, context.by, context.now(), request).value
     text = (
-        f"{path}: {made.entries:,} entries and {made.samples:,} device samples taken, "
-        f"{made.repeated:,} were in the store already; {len(made.episodes)} episode(s)."
+        f"{path}: {counted(made.entries, 'entry', 'entries')} and "
+        f"{counted(made.samples, 'device sample', 'device samples')} taken, "
+        f"{made.repeated:,} were in the store already; {counted(len(made.episodes), 'episode', 'episodes')}."
     )
     if made.doubtful:
         text += f"\n  {made.doubtful} doubtful row(s), taken and marked:"

@@ -80,7 +80,7 @@ def test_patients_are_named_by_identifier(run: Any, tmp_path: Path) -> None:
     path.write_text(message(gas()) + message(gas(), patient="0043^^^WARD-7^MR", order="F2"))
     assert run("intake", path, "--episode", "E1")[0] == REFUSED
     code, out, _ = run("intake", path, "--patient", "WARD-7|0042=E1", "--patient", "WARD-7|0043=E2")
-    assert (code, "2 episode(s)" in out) == (DONE, True)
+    assert (code, "2 episodes" in out) == (DONE, True)
     assert run("intake", path, "--patient", "no pair")[0] == WRONG_USAGE
 
 

@@ -101,7 +101,7 @@ def test_archive_and_remove(ward, tmp_path, capsys):
     assert "bed-3  ended 28-Mar-2026" in said(capsys, "--store", ward, "archive", "list")[1]
     code, out, err = said(capsys, "--store", ward, "archive", "write", old, "bed-3")
     assert code == 0, err
-    assert "1 episode(s)" in out
+    assert "1 episode," in out
     code, _, err = said(capsys, "--store", ward, "archive", "write", tmp_path / "b.luffmark", "bed-7")
     assert code == 1
     assert "no recorded end" in err
