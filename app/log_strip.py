@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from html import escape
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import (
     QBoxLayout,
@@ -42,6 +42,8 @@ from core.record.episode import Episode
 
 LEAST_LINE = 200
 """Least width of the line at 100 % beside the keys' buttons; where it has less they stand under it."""
+STALE_MS = 150
+"""How long what was said of the text before may stand while the store is busy."""
 TIGHT = 560
 """Least height of the window at 100 % at which buttons have a row of their own; their keys and menu stay."""
 
@@ -62,6 +64,11 @@ class LogStrip(QFrame):
         self._preview: Preview | None = None
         self._awaited: str | None = None
         self._pressed_early = False
+        self._came_before = False
+        self._slow = QTimer(self)
+        self._slow.setSingleShot(True)
+        self._slow.setInterval(STALE_MS)
+        self._slow.timeout.connect(self._say_reading)
         self.settle = SettleTime()
         self._labels: dict[str, str] = {}
         self._news: dict[str, str] = {}
@@ -203,12 +210,14 @@ class LogStrip(QFrame):
 
     def _clear(self) -> None:
         self.line.clear()
+        self._came_before = False
         self._forget_preview()
         self._become(State.IDLE, self._hint())
 
     def _forget_preview(self) -> None:
         """No preview is shown or awaited: an answer that still comes is of no use."""
         self._preview, self._awaited, self._pressed_early = None, None, False
+        self._slow.stop()
         self.settle.clear()
 
     # preview
@@ -218,7 +227,11 @@ class LogStrip(QFrame):
         if not text.strip() or self._record is None:
             self._become(State.IDLE, self._hint())
             return
-        self.state, self._awaited = State.AWAITED, text
+        told, self.state, self._awaited = self.state is State.TOLD, State.AWAITED, text
+        if told:
+            self._say_reading()  # what was recorded before must not stand over what is not
+        else:
+            self._slow.start()
         self._model.ask(
             entry.preview,
             self._request(False),
@@ -226,6 +239,17 @@ class LogStrip(QFrame):
             failed=self._refused,
             subject="strip preview",
         )
+
+    def _say_reading(self) -> None:
+        """No preview of another text stays up, and an Enter that came too early is answered."""
+        if self._awaited is None:
+            return
+        wait = self.tr("Reading what is typed...")
+        if self._pressed_early:
+            again = self.tr("Enter records once it stands here what will be recorded.")
+            self._become(State.AWAITED, marked(self.tr("Not recorded yet."), f"{wait} {again}"))
+        else:
+            self._become(State.AWAITED, quiet(wait, self._theme.colours.ink_quiet))
 
     def _request(self, confirmed: bool) -> LineRequest:
         assert self._record is not None
@@ -243,7 +267,9 @@ class LogStrip(QFrame):
         words = preview_words(outcome.value, self._record, self._model.session.now(), self._reader())
         if self._pressed_early:
             self.settle.start()  # a second early press was meant for the line, not for what it has become
-        self._become(State.READY, preview_html(words, self._theme.colours.ink_quiet))
+        before = self.tr("The entry before is recorded.") if self._came_before else ""
+        html = preview_html(words, self._theme.colours.ink_quiet)
+        self._become(State.READY, f"{html} {quiet(before, self._theme.colours.ink_quiet)}" if before else html)
 
     def _refused(self, failure: Failure) -> None:
         if self._awaited is None or self._awaited != self.line.text():
@@ -268,6 +294,7 @@ class LogStrip(QFrame):
     def _entered(self) -> None:
         if self._awaited is not None:
             self._pressed_early = True
+            self._say_reading()
         elif self.state in (State.REFUSED, State.IDLE) and self._preview is None and self.line.text().strip():
             self._edited(self.line.text())  # it came back: shown anew before it is recorded
         elif not self.settle.is_over:
@@ -288,6 +315,7 @@ class LogStrip(QFrame):
             self._become(State.READY, escape(nobody))
             return
         request = self._request(confirmed)
+        self._came_before = False
         self.line.clear()
         self._forget_preview()
         self._become(State.AWAITED, escape(self.tr("Recording...")))
@@ -313,6 +341,11 @@ class LogStrip(QFrame):
     def take(self, recorded: Recorded) -> None:
         """Something was recorded, here or by a form: remember it for the undo, and say so."""
         self.remember(recorded)
+        if self.line.text().strip():  # the next line is being typed: its preview is what must stand here
+            self._came_before = True
+            self._edited(self.line.text())
+            self.recorded.emit(recorded)
+            return
         whom = self.tr("Recorded for {label}").format(label=self._labels.get(recorded.episode, recorded.episode))
         what = recorded_words(recorded.entries, self._model.session.now(), self._reader())
         self._become(State.TOLD, marked(f"{whom}, {what}.", self.tr("Ctrl+Z undoes it.")))

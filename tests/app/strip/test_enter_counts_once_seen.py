@@ -85,3 +85,49 @@ def test_a_pressure_without_a_unit_takes_the_wards(qtbot, window):
     qtbot.keyClicks(window.strip.line, "ph 7.30 paco2 8.1")
     settled(qtbot, window)
     assert "PaCO2 8.1 kPa (61 mmHg)" in window.strip.plain()
+
+
+def typed_in_one_go(strip, text):
+    strip.line.setText(text)
+    strip.line.textEdited.emit(text)
+
+
+def test_what_was_recorded_never_stands_over_a_line_that_is_not(qtbot, window):
+    strip = window.strip
+    qtbot.keyClicks(strip.line, "rr 28")
+    settled(qtbot, window)
+    qtbot.keyClick(strip.line, Key.Key_Return)
+    until(qtbot, lambda: "Recorded for Bed 7" in strip.plain())
+    typed_in_one_go(strip, "spo2 91")
+    assert "Recorded" not in strip.plain()
+    assert strip.plain().startswith("Reading")
+    qtbot.keyClick(strip.line, Key.Key_Return)
+    assert strip.plain().startswith("Not recorded yet.")
+    settled(qtbot, window)
+    assert "SpO2 91" in strip.plain()
+    assert "Enter records." in strip.plain()
+    assert strip.line.text() == "spo2 91"
+
+
+def test_an_entry_that_comes_home_while_the_next_is_typed_leaves_the_preview_of_the_next(qtbot, window):
+    strip = window.strip
+    qtbot.keyClicks(strip.line, "rr 28")
+    settled(qtbot, window)
+    qtbot.keyClick(strip.line, Key.Key_Return)
+    typed_in_one_go(strip, "spo2 91")  # before the first is told as recorded
+    settled(qtbot, window)
+    until(qtbot, lambda: "The entry before is recorded." in strip.plain())
+    assert strip.plain().startswith("Bed 7")
+    assert "SpO2 91" in strip.plain()
+    assert strip.can_undo
+
+
+def test_a_preview_of_another_text_does_not_stay_up_while_the_store_is_busy(qtbot, window, monkeypatch):
+    strip = window.strip
+    qtbot.keyClicks(strip.line, "spo2 91")
+    settled(qtbot, window)
+    assert "SpO2 91" in strip.plain()
+    monkeypatch.setattr(strip._model, "ask", lambda *_args, **_more: 0)  # the answer does not come
+    typed_in_one_go(strip, "rr 44")
+    until(qtbot, lambda: strip.plain().startswith("Reading"))
+    assert "SpO2" not in strip.plain()
