@@ -17,9 +17,9 @@ from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, t
 from app.headline import lost_gain, verdict_with_loss
 from app.lever_words import lever_sentence, lever_standing, without_decides
 from app.phrases import gas_name, gas_words
+from app.policy_words import limits_words
 from app.theme import Tier, tier_word, verdict_of
 from app.words import Reader, sentence
-from app.words.template import quantity_name
 from core.judgement.gas_reading import read
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import Limit
@@ -111,8 +111,7 @@ class Explainer:
         rule = self.policy.markers.get(flag.marker)
         if rule is None:
             return
-        if rule.limits:
-            told = ", ".join(f"{quantity_name(k)} {_limit_value(k, v)}" for k, v in rule.limits.items())
+        if told := limits_words(flag.marker, rule):
             yield translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told)
         yield translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " "))
 
@@ -290,7 +289,3 @@ def _field_name(field: str) -> str:
 
 def _mmol(value: float | None) -> str | None:
     return None if value is None else f"{fixed(value, 1)} mmol/L"
-
-
-def _limit_value(name: str, value: float) -> str:
-    return fixed(value, 2) if name.startswith("ph") else trimmed(value)

@@ -143,14 +143,18 @@ def pf_word(f: EpisodeFigures, gas_unit: str) -> str:
 
 
 def beside_pf(pf: str, state: str) -> str:
-    """The P/F, then the state of the pH by its own name: nothing may let a low P/F read as resolved.
+    """The P/F, then the state of the pH by its own name: nothing may let a low P/F read as resolved. A pH above its
+    limits says so by itself.
 
     >>> beside_pf("P/F 273 mmHg", "resolved"), beside_pf("", "resolved")
     ('P/F 273 mmHg; not acidotic', 'resolved')
+    >>> beside_pf("P/F 140 mmHg", "not acidotic, pH above 7.45")
+    'P/F 140 mmHg; pH above 7.45'
     """
     if not pf:
         return state
-    of_ph = translate("headline", "not acidotic") if state == state_word(GasState.RESOLVED) else state
+    plain = translate("headline", "not acidotic")
+    of_ph = plain if state == state_word(GasState.RESOLVED) else state.removeprefix(f"{plain}, ")
     return f"{pf}; {of_ph}"
 
 

@@ -140,8 +140,6 @@ def rules(policy: Policy, differences: Iterable[PolicyDifference]) -> tuple[Rule
 
 def _marker(key: str, rule: MarkerRule, told: list[PolicyDifference]) -> Rule:
     path = f"markers.{key}"
-    words = [_pressure(n, p, relation(key, n)) for n, p in rule.pressures.items()]
-    words += [_limit(n, v, relation(key, n)) for n, v in rule.limits.items()]
     more = []
     if rule.population != "any":
         more.append(
@@ -156,7 +154,8 @@ def _marker(key: str, rule: MarkerRule, told: list[PolicyDifference]) -> Rule:
     more.append(old.format(time=minutes(rule.stale_min)))
     population = translate("policy", "everyone") if rule.population == "any" else rule.population
     population = population.replace("copd", "COPD").replace("ards", "ARDS")
-    return Rule(path, group_name(rule.group), marker_name(key), rule.on, rule.tier, ", ".join(words), population,
+    limits = limits_words(key, rule)
+    return Rule(path, group_name(rule.group), marker_name(key), rule.on, rule.tier, limits, population,
                 rule.source, rule.sure, tuple(more), _differs(path, told), rule.detail_sure)  # fmt: skip
 
 
@@ -200,6 +199,12 @@ def _plain(value: object) -> str:
     if isinstance(value, bool):
         return translate("policy", "yes") if value else translate("policy", "no")
     return trimmed(float(value), 3) if isinstance(value, int | float) else str(value)
+
+
+def limits_words(key: str, rule: MarkerRule) -> str:
+    """Every number of a marker, and on which side of it the marker is met."""
+    words = [_pressure(n, p, relation(key, n)) for n, p in rule.pressures.items()]
+    return ", ".join([*words, *(_limit(n, v, relation(key, n)) for n, v in rule.limits.items())])
 
 
 def relation(marker: str, limit: str) -> str:

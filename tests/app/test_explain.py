@@ -19,6 +19,11 @@ def test_a_flag():
     assert "28-Mar-2026 04:20" in found.as_text()
 
 
+def test_a_flag_says_on_which_side_of_its_limit_it_is_met():
+    flag = replace(FIGURES.flags[0], marker="ph_below_720_on_support")
+    assert "The marker's limits in this policy: pH below 7.20." in EXPLAINER.flag(flag).rules
+
+
 def test_a_flag_names_the_policy_that_raised_it():
     flag = FIGURES.flags[0]
     own = EXPLAINER.flag(replace(flag, policy=shipped_policy().hash)).notes[-1]
