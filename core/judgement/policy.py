@@ -75,9 +75,20 @@ def read_policy(text: str) -> Policy:
             lacking = _lacking(rule, ours[key])
             if lacking:
                 raise refuse("policy.invalid", detail=f"{kind}.{key} lacks {', '.join(lacking)}")
+    own_markers = {key: _with_detail(rule, shipped.markers[key]) for key, rule in policy.markers.items()}
     return msgspec.structs.replace(
-        policy, markers={**shipped.markers, **policy.markers}, due={**shipped.due, **policy.due}
+        policy, markers={**shipped.markers, **own_markers}, due={**shipped.due, **policy.due}
     )
+
+
+def _with_detail(rule: MarkerRule, shipped: MarkerRule) -> MarkerRule:
+    """A rule that does not say how sure its durations are is no surer of them than the shipped one.
+
+    A ward's copy may be older than the word; one that has confirmed its durations writes so.
+    """
+    if rule.detail_sure is not None or shipped.detail_sure is None:
+        return rule
+    return msgspec.structs.replace(rule, detail_sure=shipped.detail_sure)
 
 
 def _lacking(rule: MarkerRule | DueRule, shipped: MarkerRule | DueRule) -> list[str]:

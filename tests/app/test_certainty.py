@@ -5,7 +5,7 @@ import pytest
 from app.certainty import certainty_words, starred
 from app.words import Reader
 from app.words.figure_lines import FigureLines
-from core.judgement.policy import shipped_policy
+from core.judgement.policy import read_policy, shipped_policy, shipped_text
 from tests.support.flag_cases import flags
 from tests.support.sample_ward import sample_ward
 
@@ -54,3 +54,13 @@ def test_a_rule_that_is_sure_throughout_says_one_thing():
 )  # fmt: skip
 def test_the_star_stands_where_a_ward_must_confirm(sure, marked):
     assert starred("pH below 7.15", sure).endswith("*") is marked
+
+
+def test_a_wards_older_copy_is_no_surer_of_its_durations_than_the_shipped_policy():
+    line = 'detail_sure = "common practice"'
+    old = read_policy(shipped_text().replace(f"{line}\n", ""))
+    assert {k: r.detail_sure for k, r in old.markers.items()} == {
+        k: r.detail_sure for k, r in shipped_policy().markers.items()
+    }
+    confirmed = read_policy(shipped_text().replace(line, 'detail_sure = "confirmed"'))
+    assert confirmed.markers["rr_above_30"].detail_sure == "confirmed"
