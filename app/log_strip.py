@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from html import escape
 
-from PySide6.QtCore import Qt, QTimer, Signal
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import (
     QBoxLayout,
@@ -31,6 +31,7 @@ from app.strip.completion import completed, completions
 from app.strip.line_field import LineField
 from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, TOLD, OneKeyButtons
 from app.strip.preview_words import preview_words, recorded_words, undone_words
+from app.strip.reading_time import ReadingTime
 from app.strip.said_html import completion_html, marked, preview_html, quiet
 from app.strip.sent_lines import Sent, SentLines
 from app.strip.settle_time import SettleTime
@@ -42,8 +43,6 @@ from core.record.episode import Episode
 
 LEAST_LINE = 200
 """Least width of the line at 100 % beside the keys' buttons; where it has less they stand under it."""
-STALE_MS = 150
-"""How long what was said of the text before may stand while the store is busy."""
 TIGHT = 560
 """Least height of the window at 100 % at which buttons have a row of their own; their keys and menu stay."""
 
@@ -65,10 +64,7 @@ class LogStrip(QFrame):
         self._awaited: str | None = None
         self._pressed_early = False
         self._came_before = False
-        self._slow = QTimer(self)
-        self._slow.setSingleShot(True)
-        self._slow.setInterval(STALE_MS)
-        self._slow.timeout.connect(self._say_reading)
+        self._slow = ReadingTime(self._say_reading, self)
         self.settle = SettleTime()
         self._labels: dict[str, str] = {}
         self._news: dict[str, str] = {}

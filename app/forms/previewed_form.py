@@ -1,8 +1,7 @@
 """The frame of a form that writes: cards of fields that scroll, under them what will be recorded, two buttons.
 
 Every edit is previewed by the operation that reads it; Enter records what is shown. A question is asked first and
-only a second Enter says yes. Enter while a preview is awaited records once it has come and asks nothing. Esc leaves
-all untouched.
+only a second Enter says yes. Enter before the preview has come records nothing and says so. Esc leaves all untouched.
 """
 
 from __future__ import annotations
@@ -32,6 +31,7 @@ from app.forms.typed import fields_of, put, read
 from app.operations.outcome import Outcome
 from app.readers import reader_at
 from app.session import SessionModel
+from app.strip.reading_time import ReadingTime
 from app.strip.settle_time import SettleTime
 from app.theme import Theme
 from app.words import Reader, sentence
@@ -55,6 +55,7 @@ class PreviewedForm(FittedDialog):
         self.preview: Any = None
         self.asking = False
         self._awaited, self._pressed_early = False, False
+        self._slow = ReadingTime(self._say_reading, self)
         self.settle = SettleTime()
         self._sent: object = None
         self.title = QLabel(title)
@@ -223,11 +224,23 @@ class PreviewedForm(FittedDialog):
         self._awaited = self._sent is not None and not lacks
         self.go.setEnabled(self._awaited)
         if self._awaited:
+            self._slow.start()
             self.ask_preview(self._sent)
         else:
             self.say(escape(lacks or self.tr("Nothing to record yet. Esc leaves all as it is.")))
         self.show_extra()
         self.changed.emit()
+
+    def _say_reading(self) -> None:
+        """What was said of other fields does not stay up, and a press that came too early is answered."""
+        if not self._awaited:
+            return
+        wait = self.tr("Reading the fields...")
+        if self._pressed_early:
+            again = self.tr("Enter records once it stands here what will be recorded.")
+            self.say(f"<b>{escape(self.tr('Not recorded yet.'))}</b> {escape(wait)} {escape(again)}")
+        else:
+            self.say(f"<span style='color:{self.theme.colours.ink_quiet}'>{escape(wait)}</span>")
 
     def previewed(self, outcome: Outcome[Any]) -> None:
         """The preview has come."""
@@ -272,6 +285,7 @@ class PreviewedForm(FittedDialog):
             self._record(confirmed=False)
         elif self._awaited:
             self._pressed_early = True
+            self._say_reading()
 
     def _record(self, *, confirmed: bool) -> None:
         if not self.model.session.person:

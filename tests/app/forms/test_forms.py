@@ -210,6 +210,18 @@ def test_enter_before_the_preview_shows_it_and_waits_for_another(qtbot, window):
     until(qtbot, lambda: window.model.session.head > head)
 
 
+def test_what_was_said_of_other_fields_does_not_stay_up_while_the_store_is_busy(qtbot, window, monkeypatch):
+    form = opened(qtbot, window, Key.Key_F10, SettingsForm)
+    type_into(qtbot, window, form.fields["ipap"], "22")
+    assert "22" in form.plain()
+    monkeypatch.setattr(form.model, "ask", lambda *_args, **_more: 0)  # the answer does not come
+    form.fields["ipap"].box.selectAll()
+    qtbot.keyClicks(form.fields["ipap"].box.lineEdit(), "24")
+    until(qtbot, lambda: form.plain().startswith("Reading the fields"))
+    form.submit()
+    assert form.plain().startswith("Not recorded yet.")
+
+
 def test_vital_signs_start_empty_with_the_last_beside_them(qtbot, window):
     form = opened(qtbot, window, Key.Key_F12, VitalsForm)
     assert all(not f.text for f in form.fields.values())
