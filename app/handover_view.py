@@ -114,6 +114,10 @@ class HandoverView(QWidget):
         self.text.scrollToAnchor(url.fragment())
 
     def _copy(self) -> None:
+        """The plain text, in lines and letters that any other system takes."""
         from PySide6.QtGui import QGuiApplication
 
-        QGuiApplication.clipboard().setText(self.plain())
+        from app.plain_handover import handover_text
+
+        if self._content is not None:
+            QGuiApplication.clipboard().setText(handover_text(self._content))

@@ -7,7 +7,7 @@ import pytest
 from pypdf import PdfReader
 from PySide6.QtCore import Qt
 from PySide6.QtPrintSupport import QPrinter
-from PySide6.QtWidgets import QToolBar
+from PySide6.QtWidgets import QApplication, QToolBar
 
 from app.dialogs.print_preview import HandoverPreview
 from app.operations import handover, handover_sheet
@@ -58,7 +58,7 @@ def test_it_is_read_by_keys_alone(qtbot, window):
 
 def test_it_says_all_that_the_paper_says(qtbot, window):
     view = reading(qtbot, window)
-    flat = " ".join(view.plain().split())
+    flat = " ".join(view.plain().replace("\N{WORD JOINER}", "").split())
     with Store.open(window.model.session.store_path) as store:
         made = handover.prepare(store, "AB", NOW, window.doers.ward.handover_request()).value
     for page in sheet_content(made, window.reader).episodes:
@@ -67,6 +67,15 @@ def test_it_says_all_that_the_paper_says(qtbot, window):
         said += [x for g in page.gases for x in (g.ph, g.paco2, g.delta_paco2, g.verdict)]
         said += [c.response for c in page.changes] + [f.evidence for f in page.flags]
         assert all(" ".join(text.split()) in flat for text in said), page.label
+
+
+def test_what_is_copied_is_the_plain_text(qtbot, window):
+    view = reading(qtbot, window)
+    view.copy.click()
+    text = QApplication.clipboard().text()
+    assert text.startswith("HANDOVER. Shift 27-Mar-2026 19:30 to 28-Mar-2026 07:30, as of 05:30")
+    assert not [c for c in text if ord(c) > 0x17F], "no signs that another system may not take"
+    assert all(len(line) <= 100 for line in text.splitlines())
 
 
 def test_a_full_disk_is_told_and_the_typed_remark_stays(qtbot, window, tmp_path):

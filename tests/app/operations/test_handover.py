@@ -59,6 +59,7 @@ def test_the_first_handover_is_compared_with_the_shifts_start(store: Store) -> N
 
 def test_the_next_is_compared_with_the_last_closed_one(store: Store) -> None:
     close(store, DAY, EVENING, EVENING)
+    log(store, EVENING + 30 * MINUTE, "ph 7.26 paco2 72 pao2 60 gas_fio2 28 site arterial")
     log(store, EVENING + HOUR, "18/5 28")
     log(store, EVENING + 2 * HOUR, "ph 7.33 paco2 60 pao2 62 gas_fio2 28 site arterial")
     log(store, EVENING + 3 * HOUR, "plan gas at 06:00")
