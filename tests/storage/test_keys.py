@@ -92,6 +92,13 @@ def test_no_part_of_a_wrap_can_be_changed(made: keys.NewKey, field: str) -> None
         key_of(json.dumps(envelope), PASSPHRASE)
 
 
+def test_all_that_a_wrap_says_is_authenticated_with_the_key_it_holds() -> None:
+    wrap = {"kind": "passphrase", "salt": "00" * 16, "memory_kib": 64, "passes": 1, "lanes": 1}
+    others = [{**wrap, key: "01" if isinstance(value, str) else value + 1} for key, value in wrap.items()]
+    bound = [keys._bound("store-1", wrap), keys._bound("store-2", wrap), *(keys._bound("store-1", w) for w in others)]
+    assert len(set(bound)) == len(wrap) + 2
+
+
 def test_a_wrap_of_another_store_opens_nothing(made: keys.NewKey) -> None:
     envelope = json.loads(made.envelope) | {"store_id": "store-2"}
     envelope["checksum"] = keys._checksum(envelope)
