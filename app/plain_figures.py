@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app import formats
+from app.certainty import star_note
 from app.figure_groups import EXPECTED, figure_groups
 from app.figure_rows import FigureGroup, FigureRow
 from app.finding_names import lever_name
@@ -14,10 +15,15 @@ from app.theme import verdict_word
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
+from core.judgement.concern import UNCONFIRMED
 from core.judgement.shapes import EpisodeFigures, ResponseFigure
 from core.record.channels import CHANNELS, Kind
 
 _HIDDEN = frozenset({"label", "plan", "agreed_with", "breaks_and_night", "jobs", "handover_remark"})
+
+
+_EMPTY = {"Flags": "none", "Due": "none", "Scores": "none"}
+"""What is computed may be none; what is logged may only be none recorded."""
 
 
 def episode_text(figures: EpisodeFigures, reader: Reader) -> str:
@@ -29,8 +35,8 @@ def episode_text(figures: EpisodeFigures, reader: Reader) -> str:
         parts.append(sentence(figures.concern.why, reader))
     for heading, body in _sections(figures, lines):
         rows = list(body)
-        parts += ["", heading, *(f"  {row}" for row in rows or [lines.tr("none")])]
-    return "\n".join(parts)
+        parts += ["", heading, *(f"  {row}" for row in rows or [lines.tr(_EMPTY.get(heading, "none recorded"))])]
+    return "\n".join([*parts, "", star_note()] if any(f.sure in UNCONFIRMED for f in figures.flags) else parts)
 
 
 def _sections(f: EpisodeFigures, lines: FigureLines) -> Iterator[tuple[str, Iterator[str]]]:

@@ -22,7 +22,7 @@ from PySide6.QtWidgets import (
 from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
-from app.formats import day
+from app.formats import counted, day
 from app.operations import archive as operations
 from app.operations.outcome import Outcome
 from app.session import SessionModel
@@ -139,8 +139,10 @@ class ArchiveDialog(AskingDialog):
 
     def _archived(self, outcome: Outcome[Archived]) -> None:
         made = outcome.value
-        told = self.tr("{file} was made and checked: {count} episodes, {entries} entries.")
-        self.refuse(told.format(file=made.path.name, count=len(made.episodes), entries=made.entries))
+        told = self.tr("{file} was made and checked: {episodes}, {entries}.")
+        episodes = counted(len(made.episodes), self.tr("episode"), self.tr("episodes"))
+        entries = counted(made.entries, self.tr("entry"), self.tr("entries"))
+        self.refuse(told.format(file=made.path.name, episodes=episodes, entries=entries))
 
     def _keep(self) -> None:
         self._model.ask(operations.set_retention, self.days.value(), done=self._kept, failed=self.failed)

@@ -72,7 +72,7 @@ class Readout(QFrame):
         that is looked back to. `events`, which the chart writes at the crosshair, are for screen readers."""
         newest = self.tr("Then, {time}") if then else self.tr("Now, {time}")
         head = wall(at, zone) if pointed else newest.format(time=wall(at, zone))
-        settings = settings_line(stretch.settings) if stretch is not None else self.tr("no settings in force")
+        settings = settings_line(stretch.settings) if stretch is not None else self.tr("no settings recorded")
         age = ""
         if stretch is not None:
             age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))

@@ -126,7 +126,7 @@ class LaneWords:
         if off := off_mask_word(f, self.zone):  # a state that is none of acidosis is left to its shape
             acid = gas is not None and gas.state in ("severe", "acidotic")
             return f"{off}; {gas_state_word(f, gas)}" if gas is not None and acid else off
-        return state_now(f, gas, self.gas_unit) if gas is not None else translate("ward", "no gas yet")
+        return state_now(f, gas, self.gas_unit) if gas is not None else translate("ward", "no gas logged yet")
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
@@ -273,7 +273,7 @@ class LaneWords:
     def _window_items(self, f: EpisodeFigures) -> Iterator[LaneItem]:
         for r in f.responses:
             if r.headline == "not yet known" and r.superseded_at is None and r.window_to > self.as_of:
-                text = translate("ward", "Response window {start} to {end} after {anchor}: no gas yet").format(
+                text = translate("ward", "Response window {start} to {end} after {anchor}: no gas logged yet").format(
                     start=clock(r.window_from, self.zone),
                     end=clock(r.window_to, self.zone),
                     anchor=anchor_name(r),

@@ -5,6 +5,7 @@ import pytest
 from app.figure_groups import EXPECTED, figure_groups
 from app.plain_figures import episode_text
 from app.words import Reader
+from core.judgement.shapes import EpisodeFigures
 from tests.support.sample_ward import sample_ward
 
 ZONE = "Europe/London"
@@ -39,3 +40,17 @@ def test_nothing_expected_or_interpolated_is_in_text_that_people_paste():
     text = episode_text(sample_ward()[0], Reader(ZONE))
     assert "PaCO2 expected:" not in text
     assert "after it:" not in text
+
+
+def test_what_nobody_logged_is_not_called_none():
+    text = episode_text(EpisodeFigures("E", 1_774_670_400_000_000, label="Bed 9"), Reader(ZONE))
+    found = dict(zip(text.splitlines(), text.splitlines()[1:], strict=False))
+    assert found["Gases"] == found["Profile"] == "  none recorded"
+    assert found["Flags"] == found["Due"] == "  none"
+
+
+def test_a_star_in_the_text_has_its_meaning_at_the_end():
+    starred = [episode_text(f, Reader(ZONE)) for f in sample_ward() if any(x.sure == "from memory" for x in f.flags)]
+    assert starred
+    assert all("*, since" in text for text in starred)
+    assert all(text.splitlines()[-1].endswith("to be confirmed locally") for text in starred)

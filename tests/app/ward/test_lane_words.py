@@ -130,7 +130,7 @@ def test_an_episode_with_nothing_but_a_label_still_has_a_lane():
     record = record_of("E", [("20:00", {"label": "Bed 1"})])
     lane = WORDS.lane(OnWard(EpisodeFigures("E", NOW, "Bed 1", ZONE), course_of(record, NOW)), first=False)
     assert lane.state is None
-    assert lane.state_word == "no gas yet"
+    assert lane.state_word == "no gas logged yet"
     assert lane.due_word == "nothing due"
     assert "Indication not recorded" in lane.subtitle
 
