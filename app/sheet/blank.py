@@ -10,6 +10,7 @@ from PySide6.QtCore import QBuffer, QIODevice
 from PySide6.QtGui import QGuiApplication, QPainter, QPdfWriter
 
 from app.caution_texts import CAUTION
+from app.language import in_language as tr
 from app.sheet.blocks import Block, Heading, RuledBox, Signatures, draw_all, height_of
 from app.sheet.gas_table import HEADINGS as GAS_HEADINGS
 from app.sheet.press import LINE, SMALL, SUBTITLE, TITLE, Align, Press, Style
@@ -75,31 +76,32 @@ class Grid:
 
 def ward_blocks() -> list[Block]:
     """The ward's page."""
-    heads = (("Bed", 8), ("Who, ceiling, resuscitation", 20), ("State: last pH, PaCO2, at", 21),
-             ("Support now, last response", 25), ("Open flags", 16), ("Due by", 10))  # fmt: skip
+    heads = (("Bed", 8), (tr("Who, ceiling, resuscitation"), 20), (tr("State: last pH, PaCO2, at"), 21),
+             (tr("Support now, last response"), 25), (tr("Open flags"), 16), ("Due by", 10))  # fmt: skip
     return [
-        WriteOn(("Shift from", "to", "See first", "because"), 2),
-        Heading("All episodes, in order of concern"), Grid(heads, WARD_ROWS, 40),
-        Heading("Due in the next 4 h"), Grid((("By", 6), ("Bed", 8), ("What", 36)) * 2, 4),
+        WriteOn((tr("Shift from"), "to", tr("See first"), "because"), 2),
+        Heading(tr("All episodes, in order of concern")), Grid(heads, WARD_ROWS, 40),
+        Heading(tr("Due in the next 4 h")), Grid((("By", 6), ("Bed", 8), (tr("What"), 36)) * 2, 4),
     ]  # fmt: skip
 
 
 def episode_blocks() -> list[Block]:
     """One episode's page."""
     shares = (8, 6, 8, 7, 9, 7, 8, 8, 7, 8, 14, 26)
-    changes = (("Time", 8), ("Change: IPAP, EPAP, FiO2, rate, mode, interface", 46), ("What followed", 46))
-    observed = ("Time", "RR", "HR", "SpO2", "BP", "GCS / ACVPU", "Temp", "Leak", "VTe")
-    flags = (("Since", 8), ("What was met, with its values", 56), ("Seen or settled by", 36))
+    change = tr("Change: IPAP, EPAP, FiO2, rate, mode, interface")
+    changes = ((tr("Time"), 8), (change, 46), (tr("What followed"), 46))
+    observed = (tr("Time"), "RR", "HR", "SpO2", "BP", "GCS / ACVPU", tr("Temp"), tr("Leak"), "VTe")
+    flags = ((tr("Since"), 8), (tr("What was met, with its values"), 56), (tr("Seen or settled by"), 36))
     return [
-        WriteOn(FACTS, 2, 17),
-        WriteOn(("What changed",), 1, 17),
-        Heading("Settings now and changes this shift"), Grid(changes, 5, 17),
-        Heading("Gases"), Grid(tuple(zip(GAS_HEADINGS, shares, strict=True)), 4, 17),
-        Heading("Observations"), Grid([(name, 1.0) for name in observed], 5, 17),
-        Heading("Flags and what was done"), Grid(flags, 3, 17),
-        WriteOn(("Levers noted",), 1, 17),
-        Heading("Due next"), Grid((("By", 10), ("What", 40), ("By", 10), ("What", 40)), 2, 17),
-        Heading("Plan and care"), WriteOn(CARE, 2, 17),
+        WriteOn(tuple(tr(word) for word in FACTS), 2, 17),
+        WriteOn((tr("What changed"),), 1, 17),
+        Heading(tr("Settings now and changes this shift")), Grid(changes, 5, 17),
+        Heading(tr("Gases")), Grid(tuple(zip(GAS_HEADINGS, shares, strict=True)), 4, 17),
+        Heading(tr("Observations")), Grid([(name, 1.0) for name in observed], 5, 17),
+        Heading(tr("Flags and what was done")), Grid(flags, 3, 17),
+        WriteOn((tr("Levers noted"),), 1, 17),
+        Heading(tr("Due next")), Grid((("By", 10), (tr("What"), 40), ("By", 10), (tr("What"), 40)), 2, 17),
+        Heading(tr("Plan and care")), WriteOn(tuple(tr(word) for word in CARE), 2, 17),
     ]  # fmt: skip
 
 
@@ -115,8 +117,8 @@ def blank_bytes(paper: str = "A4", episodes: int = 1) -> tuple[bytes, int]:
     buffer.open(QIODevice.OpenModeFlag.WriteOnly)
     writer = QPdfWriter(buffer)
     writer.setResolution(DOTS_PER_INCH)
-    writer.setTitle("Handover, paper form")
-    writer.setCreator("Luffmark")
+    writer.setTitle(tr("Handover, paper form"))
+    writer.setCreator(tr("Luffmark"))
     set_paper(writer, paper)
     size = writer.pageLayout().fullRectPoints()
     painter = QPainter(writer)
@@ -133,7 +135,7 @@ def blank_bytes(paper: str = "A4", episodes: int = 1) -> tuple[bytes, int]:
 
 def _draw_page(press: Press, number: int, pages: int, width: float, height: float) -> None:
     wide, is_ward = width - 2 * MARGIN, number == 1
-    _draw_frame(press, "Handover" if is_ward else "Episode", number, pages, width, height)
+    _draw_frame(press, tr("Handover") if is_ward else tr("Episode"), number, pages, width, height)
     top, bottom = MARGIN + _HEAD, height - MARGIN - _FOOT
     signed = Signatures("", "")
     blocks = ward_blocks() if is_ward else episode_blocks()
@@ -152,9 +154,9 @@ def _needs(blocks: Sequence[Block], press: Press, width: float, signed: Signatur
 def _draw_frame(press: Press, title: str, number: int, pages: int, width: float, height: float) -> None:
     wide = width - 2 * MARGIN
     press.text(MARGIN, MARGIN - 8, wide * 0.6, title, TITLE)
-    press.text(MARGIN, MARGIN - 3, wide, "Paper form, filled in by hand", Style(9.5, True), Align.RIGHT)
-    whose = "Ward and date here." if number == 1 else "Patient label here, or bed, name and number."
-    told = f"{whose} Record it in the log as soon as machines are back."
+    press.text(MARGIN, MARGIN - 3, wide, tr("Paper form, filled in by hand"), Style(9.5, True), Align.RIGHT)
+    whose = tr("Ward and date here.") if number == 1 else tr("Patient label here, or bed, name and number.")
+    told = tr("{whose} Record it in the log as soon as machines are back.").format(whose=whose)
     press.text(MARGIN, MARGIN + 15, wide, told, SUBTITLE)
     press.line(MARGIN, MARGIN + 31, MARGIN + wide, MARGIN + 31, 1.4)
     top = height - MARGIN - _FOOT + 8
@@ -162,5 +164,6 @@ def _draw_frame(press: Press, title: str, number: int, pages: int, width: float,
     foot = Style(7.2)
     press.text(MARGIN, top + 2.5, wide, CAUTION, foot)
     under = top + 2.5 + press.height(CAUTION, foot, wide) + 1
-    press.text(MARGIN, under, wide * 0.8, "Blank form: nothing on it is from the record.", foot)
-    press.text(MARGIN, under, wide, f"Page {number} of {pages}", Style(7.5, True), Align.RIGHT)
+    press.text(MARGIN, under, wide * 0.8, tr("Blank form: nothing on it is from the record."), foot)
+    told = tr("Page {number} of {pages}").format(number=number, pages=pages)
+    press.text(MARGIN, under, wide, told, Style(7.5, True), Align.RIGHT)

@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Protocol
 
+from app.language import in_language as tr
 from app.sheet.press import (
     BODY,
     GREY,
@@ -245,11 +246,11 @@ class Signatures:
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         """Two lines for each."""
         half, base = (width - press.gap(16)) / 2, y + press.gap(19)
-        for left, label, name in ((x, "Given by", self.given_by),
-                                  (x + half + press.gap(16), "Taken by", self.taken_by)):  # fmt: skip
+        for left, label, name in ((x, tr("Given by"), self.given_by),
+                                  (x + half + press.gap(16), tr("Taken by"), self.taken_by)):  # fmt: skip
             split, end = left + half * 0.6, left + half
             self._line(press, left, base, split - press.gap(6), label, name)
-            self._line(press, split, base, end, "Time", self.at if name else "")
+            self._line(press, split, base, end, tr("Time"), self.at if name else "")
 
     @staticmethod
     def _line(press: Press, left: float, base: float, right: float, label: str, words: str) -> None:
@@ -275,7 +276,7 @@ class RuledBox:
 
     @staticmethod
     def _name_height(press: Press, width: float) -> float:
-        return press.height("Handover remark", HEADING, width)
+        return press.height(tr("Handover remark"), HEADING, width)
 
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         self.draw_high(press, x, y, width, self.height(press, width))
@@ -283,7 +284,7 @@ class RuledBox:
     def draw_high(self, press: Press, x: float, y: float, width: float, high: float) -> None:
         """Draw it with a height of its own."""
         press.box(x, y, width, high, weight=0.5, ink=LINE)
-        press.text(x + press.gap(5), y + press.gap(2), width, "Handover remark", HEADING)
+        press.text(x + press.gap(5), y + press.gap(2), width, tr("Handover remark"), HEADING)
         if not self.words:
             press.text(x, y + press.gap(2.5), width - press.gap(5), self.empty, SMALL, Align.RIGHT)
         top = y + press.gap(2) + self._name_height(press, width)

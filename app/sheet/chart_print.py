@@ -9,6 +9,7 @@ import numpy as np
 from PySide6.QtCore import Qt
 
 from app import formats
+from app.language import in_language as tr
 from app.sheet.chart_data import GAP, Line, ShiftChart, Strip
 from app.sheet.press import GREY, LINE, PALE, SMALL, Align, Press, Style
 from core.record.instant import HOUR, Instant
@@ -47,7 +48,7 @@ class ChartBlock:
             plot.strip(strip, top, share - 3, x)
             top += share
         if not strips:
-            press.text(x, top, width, "No gas, rate or SpO2 recorded for this stretch of time.", SMALL)
+            press.text(x, top, width, tr("No gas, rate or SpO2 recorded for this stretch of time."), SMALL)
         plot.clock(y + self.high - _AXIS)
 
 
@@ -100,7 +101,7 @@ class _Plot:
         p.text(label_left, top + high / 2 - 9, _LEFT - 4, "IPAP / EPAP\ncmH2O", LABEL)
         p.line(self.left, top + high, self.left + self.width, top + high, 0.3, LINE)
         if not c.ribbon:
-            p.text(self.left + 4, top + high / 2 - 5, self.width, "No settings recorded.", SMALL)
+            p.text(self.left + 4, top + high / 2 - 5, self.width, tr("No settings recorded."), SMALL)
             return
 
         def y(value: float) -> float:

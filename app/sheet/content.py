@@ -10,6 +10,7 @@ from dataclasses import replace
 
 from app import formats
 from app.formats import zone_name
+from app.language import in_language as tr
 from app.operations.handover import Handover
 from app.sheet.episode_content import EpisodeWriter
 from app.sheet.shapes import SheetContent
@@ -25,15 +26,16 @@ def sheet_content(
     shift = handover.shift
     reader = replace(reader, near=(shift.start - 2 * HOUR, handover.end + 10 * HOUR))
     prepared = formats.wall(handover.prepared_at, reader.zone)
-    printed = f"Printed {prepared} ({zone_name(reader.zone)})"
+    printed = tr("Printed {prepared} ({zone_name})").format(prepared=prepared, zone_name=zone_name(reader.zone))
     if handover.as_known_at is not None:
-        printed += f"; as known at {formats.wall(handover.as_known_at, reader.zone)}"
+        printed += tr("; as known at {wall}").format(wall=formats.wall(handover.as_known_at, reader.zone))
     writer = EpisodeWriter(handover, reader)
     return SheetContent(
         WardWriter(handover, reader).ward(
-            title or ("Handover" if handover.as_known_at is None else "Handover, reviewed")
+            title or (tr("Handover") if handover.as_known_at is None else tr("Handover, reviewed"))
         ),
         tuple(writer.episode(n, s) for n, s in enumerate(shift.episodes, 1)),
-        f"Ledger head {handover.printed_head}", printed, given_by, taken_by, gas_unit=reader.gas_unit,
+        tr("Ledger head {head}").format(head=handover.printed_head), printed, given_by, taken_by,
+        gas_unit=reader.gas_unit,
         signed_at=prepared if given_by and taken_by else "",
     )  # fmt: skip

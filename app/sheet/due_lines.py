@@ -7,6 +7,7 @@ from typing import Final
 
 from app import formats
 from app.finding_names import due_name
+from app.language import in_language as tr
 from app.ward.ordering import GAS
 from app.words import Reader
 from core.figures.shift import ShiftFigures
@@ -55,8 +56,8 @@ def skin_line(episodes: Iterable[ShiftFigures], reader: Reader) -> str:
     found.sort(key=lambda x: (x[1].due_until, x[0]))
     late = [label for label, d in found if d.state == "overdue"]
     to_come = [f"{label} by {reader.time(d.due_until)}" for label, d in found if d.state != "overdue"]
-    return " ".join(_part(head, names) for head, names in (("overdue", late), ("to come", to_come)) if names)
+    return " ".join(_part(head, names) for head, names in (("overdue", late), (tr("to come"), to_come)) if names)
 
 
 def _part(head: str, names: Sequence[str]) -> str:
-    return f"Skin checks {head}: {', '.join(names)}."
+    return tr("Skin checks {head}: {those}.").format(head=head, those=", ".join(names))

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from app import formats
 from app.certainty import starred
 from app.finding_names import lever_name, marker_name
+from app.language import in_language as tr
 from app.later_words import later_sentence
 from app.lever_words import lever_reasons
 from app.sheet.chart_data import shift_chart
@@ -47,8 +48,13 @@ class EpisodeWriter(SheetWriter):
 
     def _plan(self, f: EpisodeFigures) -> Iterator[Fact]:
         """If this by then, do that, agreed with whom; breaks and night; what was not done."""
-        for name, channel in (("Plan", "plan"), ("Agreed with", "agreed_with"),
-                              ("Breaks and night", "breaks_and_night"), ("Jobs not done", "jobs")):  # fmt: skip
+        rows = (
+            (tr("Plan"), "plan"),
+            (tr("Agreed with"), "agreed_with"),
+            (tr("Breaks and night"), "breaks_and_night"),
+            (tr("Jobs not done"), "jobs"),
+        )
+        for name, channel in rows:
             yield name, str(f.profile.get(channel) or formats.ABSENT)
 
     def _levers(self, f: EpisodeFigures) -> Iterator[str]:
@@ -65,46 +71,46 @@ class EpisodeWriter(SheetWriter):
 
     def _subtitle(self, s: ShiftFigures) -> str:
         f = s.now
-        place = f.profile.get("location") or "place not recorded"
+        place = f.profile.get("location") or tr("place not recorded")
         identifier = f.profile.get("identifier")
-        key = f"Episode {f.episode}" + (f", {identifier}" if identifier else "")
+        key = tr("Episode {episode}").format(episode=f.episode) + (f", {identifier}" if identifier else "")
         return f"{self._who(f)}. {place}. {key}"
 
     def _facts(self, s: ShiftFigures) -> Iterator[Fact]:
         p = s.now.profile
-        yield "Why on support", formats.quantity("indication", p.get("indication"))
-        yield "SpO2 target", self._target(s)
-        yield "Ceiling of care", formats.quantity("ceiling_of_care", p.get("ceiling_of_care") or formats.ABSENT)
-        yield "Resuscitation", str(p.get("resuscitation") or formats.ABSENT)
-        yield "Responsible", str(p.get("contact") or formats.ABSENT)
+        yield tr("Why on support"), formats.quantity("indication", p.get("indication"))
+        yield tr("SpO2 target"), self._target(s)
+        yield tr("Ceiling of care"), formats.quantity("ceiling_of_care", p.get("ceiling_of_care") or formats.ABSENT)
+        yield tr("Resuscitation"), str(p.get("resuscitation") or formats.ABSENT)
+        yield tr("Responsible"), str(p.get("contact") or formats.ABSENT)
         usual = p.get("usual_paco2")
-        yield "Usual PaCO2", self._lines.pressure(usual if isinstance(usual, float) else None)
-        yield "Home support", str(p.get("home_support") or formats.ABSENT)
-        yield "Mask this shift", self._mask_this_shift(s)
+        yield tr("Usual PaCO2"), self._lines.pressure(usual if isinstance(usual, float) else None)
+        yield tr("Home support"), str(p.get("home_support") or formats.ABSENT)
+        yield tr("Mask this shift"), self._mask_this_shift(s)
 
     def _support(self, s: ShiftFigures) -> Iterator[Fact]:
         """Since when, hours on the mask, settings now, leak and interface."""
         f = s.now
-        yield "Support", self._lines.on_mask(f.support)
-        yield "Settings now", self._support_now(f)
-        yield "Leak, interface", self._lines.leak(f.leak) + self._interface(f)
+        yield tr("Support"), self._lines.on_mask(f.support)
+        yield tr("Settings now"), self._support_now(f)
+        yield tr("Leak, interface"), self._lines.leak(f.leak) + self._interface(f)
         if (at := quiet_since(s)) is not None:
-            yield "Record", f"nothing logged since {self._moment(at)}"
+            yield tr("Record"), tr("nothing logged since {moment}").format(moment=self._moment(at))
 
     def _mask_this_shift(self, s: ShiftFigures) -> str:
         text = formats.hours(s.hours_on_mask)
         if not s.breaks:
-            return f"{text}, no break recorded"
+            return tr("{text}, no break recorded").format(text=text)
         spans = ", ".join(
             f"{self._moment(b.start)} to {self._moment(b.end) if b.end is not None else 'now'}" for b in s.breaks
         )
-        return f"{text}; off {spans}"
+        return tr("{text}; off {spans}").format(text=text, spans=spans)
 
     @staticmethod
     def _target(s: ShiftFigures) -> str:
         low, high = (s.now.profile.get(f"target_spo2_{end}") for end in ("low", "high"))
         text = f"{formats.trimmed(s.target[0])} to {formats.trimmed(s.target[1])} %"
-        return text if low is not None and high is not None else f"not recorded; {text} by risk"
+        return text if low is not None and high is not None else tr("not recorded; {text} by risk").format(text=text)
 
     def _changes(self, s: ShiftFigures) -> Iterator[ChangeLine]:
         """Every change of the shift in order of time; what was set with an anchor stands in its line."""
@@ -115,16 +121,16 @@ class EpisodeWriter(SheetWriter):
         for r in s.responses:
             what = self._lines.anchor(r)
             if with_it := beside.pop(r.anchor_at, None):
-                what += f"; with it {self._lines.steps(with_it)}"
+                what += tr("; with it {steps}").format(steps=self._lines.steps(with_it))
             told = opened(self._lines.of(s.now).verdict(r))
-            short = "support started" if r.anchor == "start" else what
+            short = tr("support started") if r.anchor == "start" else what
             brief = f"{self._moment(r.anchor_at)} {short}: {with_loss(r.headline, lost=r.gain_lost)}"
             line = ChangeLine(self._when(r.first_at, r.anchor_at), what, told, r.headline, brief)
             rows.append((r.first_at, line))
         for at, steps in beside.items():
-            told = "Not judged by itself."
+            told = tr("Not judged by itself.")
             what = self._lines.steps(steps)
-            brief = f"{self._moment(at)} {what}: not judged by itself"
+            brief = tr("{moment} {what}: not judged by itself").format(moment=self._moment(at), what=what)
             rows.append((at, ChangeLine(self._moment(at), what, told, "", brief)))
         yield from (line for _, line in sorted(rows, key=lambda x: x[0]))
 
@@ -132,7 +138,7 @@ class EpisodeWriter(SheetWriter):
         return self._moment(last) if first == last else f"{self._moment(first)} to {self._moment(last)}"
 
     def _interface(self, f: EpisodeFigures) -> str:
-        return f". Interface: {f.support.interface or formats.ABSENT}"
+        return tr(". Interface: {interface}").format(interface=f.support.interface or formats.ABSENT)
 
     def _flag(self, x: FlagFigure) -> FlagLine:
         return FlagLine(x.tier, self._lines.flag_head(x), self._lines.evidence(x), self._lines.certainty(x),
@@ -145,31 +151,34 @@ class EpisodeWriter(SheetWriter):
         if x.settled_at is not None:
             by = f" by {x.settled_by}" if x.settled_by else ""
             why = f": {x.settled_why}" if x.settled_why else ""
-            return f"since {since}, settled {self._moment(x.settled_at)}{by}{why}"
-        undone = ", undone by a correction" if x.undone_by_correction else ""
-        return (
-            f"{since} to {self._moment(x.ended_at)}{undone}" if x.ended_at is not None else f"since {since}{undone}"
-        )
+            told = tr("since {since}, settled {moment}{by}{why}")
+            return told.format(since=since, moment=self._moment(x.settled_at), by=by, why=why)
+        undone = tr(", undone by a correction") if x.undone_by_correction else ""
+        if x.ended_at is None:
+            return tr("since {since}{undone}").format(since=since, undone=undone)
+        told = tr("{since} to {ended}{undone}")
+        return told.format(since=since, ended=self._moment(x.ended_at), undone=undone)
 
     def _care(self, s: ShiftFigures) -> Iterator[Fact]:
         record = self._h.records[s.episode].until(s.end)
         p = s.now.profile
-        yield "Tolerance", record.latest_text("comfort") or formats.ABSENT
-        yield "Secretions", self._newest_event(s, "secretions")
-        yield "Skin", self._newest_event(s, "skin_check")
-        yield "Feeding", str(p.get("feeding") or formats.ABSENT)
-        yield "Isolation", str(p.get("isolation") or formats.ABSENT)
+        yield tr("Tolerance"), record.latest_text("comfort") or formats.ABSENT
+        yield tr("Secretions"), self._newest_event(s, "secretions")
+        yield tr("Skin"), self._newest_event(s, "skin_check")
+        yield tr("Feeding"), str(p.get("feeding") or formats.ABSENT)
+        yield tr("Isolation"), str(p.get("isolation") or formats.ABSENT)
 
     def _newest_event(self, s: ShiftFigures, channel: str) -> str:
         found = [e for e in s.events if e.channel == channel]
         if not found:
-            return "nothing recorded this shift"
+            return tr("nothing recorded this shift")
         return f"{self._clock(found[-1].at)} {found[-1].words or 'recorded'}"
 
     def _to_check(self, s: ShiftFigures) -> Iterator[str]:
         if s.recorded_late and not self._h.imported:
-            late = "1 typed entry" if s.recorded_late == 1 else f"{s.recorded_late} typed entries"
-            yield f"{late} of this shift {'was' if s.recorded_late == 1 else 'were'} recorded more than 1 h late."
+            one = tr("1 typed entry of this shift was recorded more than 1 h late.")
+            many = tr("{count} typed entries of this shift were recorded more than 1 h late.")
+            yield one if s.recorded_late == 1 else many.format(count=s.recorded_late)
         yield from self._came_later(s)
         warnings = [*s.now.warnings, *(w for g in s.gases for w in g.warnings)]
         yield from dict.fromkeys(sentence(w, self._reader) for w in warnings)
@@ -180,6 +189,6 @@ class EpisodeWriter(SheetWriter):
         if not told:
             return
         for h in told[:MOST_LATER]:
-            yield f"Not known then: {later_sentence(h, self._reader)}."
+            yield tr("Not known then: {later_sentence}.").format(later_sentence=later_sentence(h, self._reader))
         if len(told) > MOST_LATER:
-            yield f"Not known then: {len(told) - MOST_LATER} more values."
+            yield tr("Not known then: {count} more values.").format(count=len(told) - MOST_LATER)

@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from typing import Final
 
 from app.formats import ABSENT
+from app.language import in_language as tr
 from app.sheet.blocks import Block, Column, Facts, Flag, Heading, SideBySide, Table, Text
 from app.sheet.gas_table import HEADINGS, GasRow
 from app.sheet.press import BODY, SMALL, STRONG, Align
@@ -24,45 +25,46 @@ def upper_blocks(page: EpisodePage) -> Iterator[Block]:
     for fact in page.support:
         yield Facts((fact,), 1, value_style=STRONG if fact[0] == "Settings now" else BODY)
     since = page.since_short if page.brief.since else page.since
-    yield Facts((("What changed", f"{page.since_head}: {' '.join(since)}"),), 1)
+    yield Facts(((tr("What changed"), f"{page.since_head}: {' '.join(since)}"),), 1)
     yield from _changes(page)
-    yield Heading("The shift on one clock", _CHART_KEY)
+    yield Heading(tr("The shift on one clock"), _CHART_KEY)
 
 
 def _changes(page: EpisodePage) -> Iterator[Block]:
     b = page.brief
-    yield Heading("Changes this shift and their responses", _left_out(b.changes_out, "earlier change"))
+    yield Heading(tr("Changes this shift and their responses"), _left_out(b.changes_out, tr("earlier change")))
     short, whole = page.changes[b.changes_out : b.changes], page.changes[b.changes :]
     if short:
-        yield Text(f"Earlier, by verdict alone: {'; '.join(c.brief for c in short)}.")
+        yield Text(tr("Earlier, by verdict alone: {those}.").format(those="; ".join(c.brief for c in short)))
     if whole:
-        columns = (Column("When", 12), Column("What", 46), Column("What followed", 54))
+        columns = (Column(tr("When"), 12), Column(tr("What"), 46), Column(tr("What followed"), 54))
         yield Table(columns, [(c.at, c.what, c.response) for c in whole])
     if not page.changes:
-        yield Text("No change of settings recorded this shift.")
+        yield Text(tr("No change of settings recorded this shift."))
 
 
 def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
     """What stands under the chart: gases, flags, due items and levers, plan and care, what is to be checked."""
     b = page.brief
-    heading = f"Gases (pressures in {unit}; HCO3 in mmol/L, c: calculated; +/−: against the last change)"
-    yield Heading(heading, _left_out(b.gases_out, "earlier gas"))
+    told = tr("Gases (pressures in {unit}; HCO3 in mmol/L, c: calculated; +/−: against the last change)")
+    heading = told.format(unit=unit)
+    yield Heading(heading, _left_out(b.gases_out, tr("earlier gas")))
     gases = page.gases[b.gases_out :]
-    yield gas_table(gases) if gases else Text("No gas recorded this shift or before it.")
-    yield Heading("Flags, open and settled", _hidden(page))
+    yield gas_table(gases) if gases else Text(tr("No gas recorded this shift or before it."))
+    yield Heading(tr("Flags, open and settled"), _hidden(page))
     yield from flag_blocks(page.flags, b)
     said = [line.partition(": ")[0] for line in page.due] if b.due else page.due
-    due: tuple[Block, ...] = (Heading("Due in the next 4 h, and overdue"), *_texts(said, "Nothing is due."))
-    decides = Heading("Levers that could act", "a qualified person decides")
-    levers: tuple[Block, ...] = (decides, *_texts(page.levers, "None by what is recorded."))
+    due: tuple[Block, ...] = (Heading(tr("Due in the next 4 h, and overdue")), *_texts(said, tr("Nothing is due.")))
+    decides = Heading(tr("Levers that could act"), tr("a qualified person decides"))
+    levers: tuple[Block, ...] = (decides, *_texts(page.levers, tr("None by what is recorded.")))
     yield SideBySide(due, levers)
     told = "; ".join(page.told) or ABSENT
-    plan = _recorded((*page.plan, ("Calls, answers", told)))
-    yield SideBySide((Heading("Plan, calls"), *plan), (Heading("Care"), *_recorded(page.care)))
+    plan = _recorded((*page.plan, (tr("Calls, answers"), told)))
+    yield SideBySide((Heading(tr("Plan, calls")), *plan), (Heading(tr("Care")), *_recorded(page.care)))
     if page.to_check:
         kept = page.to_check[: len(page.to_check) - b.checks]
-        more = f" {b.checks} more: {_RECORD}." if b.checks else ""
-        yield Facts((("To check", " ".join(kept) + more),), 1, value_style=SMALL)
+        more = tr(" {checks} more: {RECORD}.").format(checks=b.checks, RECORD=_RECORD) if b.checks else ""
+        yield Facts(((tr("To check"), " ".join(kept) + more),), 1, value_style=SMALL)
 
 
 def _recorded(facts: Iterable[Fact]) -> tuple[Block, ...]:
@@ -73,7 +75,7 @@ def _recorded(facts: Iterable[Fact]) -> tuple[Block, ...]:
         name if n == 0 else lowered(name) for n, (name, _) in enumerate(f for f in facts if f not in known)
     )
     blocks: tuple[Block, ...] = (Facts(known, 1),) if known else ()
-    return (*blocks, Text(f"Not recorded: {missing}.", SMALL)) if missing else blocks
+    return (*blocks, Text(tr("Not recorded: {missing}.").format(missing=missing), SMALL)) if missing else blocks
 
 
 def _texts(lines: Iterable[str], none: str) -> tuple[Block, ...]:
@@ -84,7 +86,8 @@ def _hidden(page: EpisodePage) -> str:
     """Whose evidence the page leaves to the record."""
     rows = [f for f in page.flags if f.is_open and (f.is_strongest or not page.brief.weaker_evidence)]
     hidden = [t for t in TIERS if t not in page.brief.evidence_of and any(f.tier == t for f in rows)]
-    return f"evidence and sources of the flags of {' and '.join(hidden)}: {_RECORD}" if hidden else ""
+    told = tr("evidence and sources of the flags of {tiers}: {where}")
+    return told.format(tiers=tr(" and ").join(hidden), where=tr(_RECORD)) if hidden else ""
 
 
 def flag_blocks(flags: tuple[FlagLine, ...], brief: PageBrevity) -> Iterator[Block]:
@@ -96,15 +99,15 @@ def flag_blocks(flags: tuple[FlagLine, ...], brief: PageBrevity) -> Iterator[Blo
     yield from (SideBySide(tuple(alone[n : n + 1]), tuple(alone[n + 1 : n + 2])) for n in range(0, len(alone), 2))
     under = [f for f in opened if f not in rows]
     if under:
-        yield Text(f"Under these, counted once: {'; '.join(f.head for f in under)}.")
+        yield Text(tr("Under these, counted once: {those}.").format(those="; ".join(f.head for f in under)))
     closed = [f for f in flags if not f.is_open]
     if closed:
-        for head, found in (("Settled", True), ("No longer met", False)):
+        for head, found in ((tr("Settled"), True), (tr("No longer met"), False)):
             told = [f for f in closed if f.is_settled is found]
             if told:
                 yield Text(f"{head}: {'; '.join(_closed(told, times=found or not brief.ended))}.")
     if not flags:
-        yield Text("No flag was open or raised this shift.")
+        yield Text(tr("No flag was open or raised this shift."))
 
 
 def _flag(flag: FlagLine, *, evidence: bool) -> Flag:
@@ -119,7 +122,7 @@ def _closed(flags: Iterable[FlagLine], *, times: bool) -> Iterator[str]:
     for flag in flags:
         spells.setdefault(flag.marker, []).append(flag.spell)
     for marker, found in spells.items():
-        often = f" {len(found)} times" if len(found) > 1 else ""
+        often = tr(" {found} times").format(found=len(found)) if len(found) > 1 else ""
         yield f"{marker} {', '.join(found)}" if times else f"{marker}{often}"
 
 
@@ -141,4 +144,4 @@ def _left_out(count: int, what: str) -> str:
     if not count:
         return ""
     plural = what if count == 1 or what == "more" else f"{what}s" if not what.endswith("s") else f"{what}es"
-    return f"{count} {plural} not shown: {_RECORD}"
+    return tr("{count} {plural} not shown: {RECORD}").format(count=count, plural=plural, RECORD=_RECORD)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from app import formats
+from app.language import in_language as tr
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
@@ -83,7 +84,7 @@ def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bo
         _pressure_change(j.delta_paco2_mmHg if j else None, unit),
         pressure(g.pao2_mmHg), NO_VALUE if hco3 is None else formats.fixed(hco3, 1) + mark,
         pressure(g.pf_mmHg), NO_VALUE if g.fio2 is None else formats.fraction(g.fio2),
-        ", ".join([state or "not known", *marks]), _verdict(j, is_base=is_base), is_before,
+        ", ".join([state or tr("not known"), *marks]), _verdict(j, is_base=is_base), is_before,
     )  # fmt: skip
 
 
@@ -97,7 +98,7 @@ def _pressure_change(value: float | None, unit: str) -> str:
 
 def _verdict(j: JudgedGas | None, *, is_base: bool) -> str:
     if j is None:
-        return "baseline" if is_base else "not used for a verdict"
+        return "baseline" if is_base else tr("not used for a verdict")
     timing = {"early": ", early", "late": ", late"}.get(j.timing, "")
-    verdict = with_loss(j.verdict or "not judged", lost=j.since_start.gain_lost)
+    verdict = with_loss(j.verdict or tr("not judged"), lost=j.since_start.gain_lost)
     return f"{verdict} ({formats.minutes(j.minutes)}{timing})"

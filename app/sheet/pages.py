@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
 
+from app.language import in_language as tr
 from app.sheet.blocks import Block, Heading, RuledBox, Signatures, Text, draw_all, height_of
 from app.sheet.chart_print import ChartBlock
 from app.sheet.episode_sheet import lower_blocks, upper_blocks
@@ -120,12 +121,12 @@ def _end_height(remark: RuledBox, press: Press, room: Room) -> float:
 
 def _on_more_pages(page: EpisodePage, press: Press, room: Room) -> Fitted:
     """The page as far as it goes, the rest on further ones. A remark too long for what is left goes there too."""
-    goes_on = Text("Goes on on the next page.", STRONG)
+    goes_on = Text(tr("Goes on on the next page."), STRONG)
     upper, lower, remark = tuple(upper_blocks(page)), list(lower_blocks(page, room.unit)), RuledBox(page.remark)
     fixed = height_of((*upper, goes_on), press, room.width) + LEAST_CHART
     if fixed + _end_height(remark, press, room) > room.height:
-        lower += [Heading("Handover remark"), *(Text(part) for part in page.remark.splitlines())]
-        remark = RuledBox("", "the remark stands on the next page")
+        lower += [Heading(tr("Handover remark")), *(Text(part) for part in page.remark.splitlines())]
+        remark = RuledBox("", tr("the remark stands on the next page"))
     left = room.height - fixed - _end_height(remark, press, room)
     kept = _as_many(lower, press, room.width, left)
     chart = ChartBlock(page.chart, LEAST_CHART)

@@ -8,6 +8,7 @@ from typing import Final
 from PySide6.QtCore import QBuffer, QIODevice, QMarginsF
 from PySide6.QtGui import QGuiApplication, QPagedPaintDevice, QPageLayout, QPageSize, QPainter, QPdfWriter
 
+from app.language import in_language as tr
 from app.operations.outcome import report
 from app.sheet.blocks import Signatures
 from app.sheet.pages import Fitted, Room, draw_episode, draw_overflow, fit_episode
@@ -50,7 +51,7 @@ def pdf_bytes(content: SheetContent, paper: str = "A4") -> tuple[bytes, int]:
     writer = QPdfWriter(buffer)
     writer.setResolution(DOTS_PER_INCH)
     writer.setTitle(f"{content.ward.title}, {content.ward.shift}")
-    writer.setCreator("Luffmark")
+    writer.setCreator(tr("Luffmark"))
     set_paper(writer, paper)
     pages = paint(content, writer, DOTS_PER_INCH)
     buffer.close()
@@ -109,7 +110,7 @@ class _Job:
     def run(self) -> int:
         c, w = self._content, self._content.ward
         for n, part in enumerate(self._ward):
-            self._begin(w.title if n == 0 else f"{w.title}, continued", "", w.shift)
+            self._begin(w.title if n == 0 else tr("{title}, continued").format(title=w.title), "", w.shift)
             signed = self._signed if n + 1 == len(self._ward) else None
             draw_ward(part, self._press, self._left, self._ward_top, self._width, self._bottom, signed)
         for page, fitted in zip(c.episodes, self._fitted, strict=True):
@@ -120,7 +121,7 @@ class _Job:
         self._begin(page.label, page.subtitle, page.standing)
         draw_episode(fitted, self._press, self._left, self._top, self._bottom, self._room)
         for blocks in fitted.overflow:
-            self._begin(f"{page.label}, continued", page.subtitle, page.standing)
+            self._begin(tr("{label}, continued").format(label=page.label), page.subtitle, page.standing)
             draw_overflow(fitted, blocks, self._press, self._left, self._top, self._width)
 
     def _begin(self, title: str, subtitle: str, standing: str) -> None:
@@ -154,7 +155,8 @@ class _Job:
         p.text(self._left, top + 2.5, self._width, c.caution, foot)
         under = top + 2.5 + p.height(c.caution, foot, self._width) + 1
         p.text(self._left, under, self._width * 0.8, f"{c.printed}. {c.head}.", foot)
-        p.text(self._left, under, self._width, f"Page {self._number} of {self._pages}", Style(7.5, True), Align.RIGHT)
+        told = tr("Page {number} of {pages}").format(number=self._number, pages=self._pages)
+        p.text(self._left, under, self._width, told, Style(7.5, True), Align.RIGHT)
 
 
 def _on_one_line(press: Press, text: str, style: Style, width: float) -> str:

@@ -7,9 +7,10 @@ from typing import Final
 
 from app import formats
 from app.finding_names import due_name, marker_name
+from app.language import in_language as tr
 from app.operations.last_handover import Handed
 from app.phrases import channel_name
-from app.sheet.writer import STATES, lowered, opened
+from app.sheet.writer import lowered, opened, state_head
 from app.words import Reader
 from app.words.figure_lines import FigureLines
 from core.figures.since_handover import FactChange, SinceHandover, Verdict
@@ -27,23 +28,27 @@ def compared_with(handed: Handed, reader: Reader) -> str:
     """What a handover is compared with, for the ward's page."""
     at = formats.wall(handed.at, reader.zone)
     if handed.head is None:
-        return f"No handover was closed before: what changed is told since the shift's start, {at}."
-    return f"What changed is told since the last closed handover, as of {at}: {handed.name}."
+        told = tr("No handover was closed before: what changed is told since the shift's start, {at}.")
+        return told.format(at=at)
+    return tr("What changed is told since the last closed handover, as of {at}: {name}.").format(
+        at=at, name=handed.name
+    )
 
 
 def since_head(handed: Handed, reader: Reader) -> str:
     """The heading over what changed."""
     if handed.head is None:
-        return f"Since the shift's start, {reader.time(handed.at)} (no handover was closed before)"
-    return f"Since the last handover, {formats.wall(handed.at, reader.zone)}"
+        told = tr("Since the shift's start, {time} (no handover was closed before)")
+        return told.format(time=reader.time(handed.at))
+    return tr("Since the last handover, {wall}").format(wall=formats.wall(handed.at, reader.zone))
 
 
 def since_lines(since: SinceHandover, lines: FigureLines, *, short: bool = False) -> tuple[str, ...]:
     """A sentence for each thing that is otherwise; `short` counts the flags."""
     if not since.was_there:
-        return ("Not on the ward then; all of it is new.",)
+        return (tr("Not on the ward then; all of it is new."),)
     if since.is_nothing:
-        return ("Nothing is otherwise.",)
+        return (tr("Nothing is otherwise."),)
     return tuple(_SinceWriter(since, lines, short).all())
 
 
@@ -54,37 +59,43 @@ class _SinceWriter:
 
     def all(self) -> Iterator[str]:
         s = self._s
-        support = [_SUPPORT[w] for w in s.support]
+        support = [tr(_SUPPORT[w]) for w in s.support]
         whole = s.settings and "started" not in s.support  # of a support that is new, all of it is
         changed = [lowered_name(self._lines.steps(s.settings))] if whole else []
         if support or changed:
-            yield f"Settings: {', '.join([*support, *changed])}."
+            yield tr("Settings: {those}.").format(those=", ".join([*support, *changed]))
         if s.gas_after is not None:
-            yield f"State: {self._state()}."
+            yield tr("State: {state}.").format(state=self._state())
         if s.verdicts:
-            yield f"Verdicts: {'; '.join(self._verdict(v) for v in s.verdicts)}."
+            yield tr("Verdicts: {those}.").format(those="; ".join(self._verdict(v) for v in s.verdicts))
         if self._short and (s.raised or s.gone):
-            yield f"Flags: {len(s.raised)} raised, {len(s.gone)} settled or no longer met, below with their times."
+            told = tr("Flags: {raised} raised, {gone} settled or no longer met, below with their times.")
+            yield told.format(raised=len(s.raised), gone=len(s.gone))
         if s.raised and not self._short:
-            yield f"Flags raised: {'; '.join(self._flag(f) for f in s.raised)}."
+            yield tr("Flags raised: {those}.").format(those="; ".join(self._flag(f) for f in s.raised))
         if s.gone and not self._short:
-            yield f"Flags settled or no longer met: {'; '.join(self._flag(f) for f in s.gone)}."
+            yield tr("Flags settled or no longer met: {those}.").format(
+                those="; ".join(self._flag(f) for f in s.gone)
+            )
         if s.done:
-            yield f"Done: {'; '.join(self._done(s.done))}."
+            yield tr("Done: {those}.").format(those="; ".join(self._done(s.done)))
         for fact in s.facts:
             yield f"{self._fact(fact)}."
 
     def _state(self) -> str:
         before, after = self._s.gas_before, self._s.gas_after
         assert after is not None
-        new, at = lowered(STATES.get(after.state or "", "State not known")), self._reader.time(after.at)
+        new, at = lowered(state_head(after.state)), self._reader.time(after.at)
         if before is None:
-            return f"first gas {new}, pH {self._lines.ph(after)}, PaCO2 {self._lines.paco2(after)} at {at}"
-        old = lowered(STATES.get(before.state or "", "State not known"))
-        state = f"still {new}" if old == new else f"{old} before, now {new}"
+            told = tr("first gas {state}, pH {ph}, PaCO2 {paco2} at {at}")
+            return told.format(state=new, ph=self._lines.ph(after), paco2=self._lines.paco2(after), at=at)
+        old = lowered(state_head(before.state))
+        told = tr("still {new}") if old == new else tr("{old} before, now {new}")
+        state = told.format(old=old, new=new)
         unit = f" {self._reader.gas_unit}"
         paco2 = f"{self._lines.paco2(before).removesuffix(unit)} to {self._lines.paco2(after)}"
-        span = f"{self._reader.time(before.at)} to {at}" if before.at != after.at else f"gas of {at} reads otherwise"
+        told = tr("{before} to {at}") if before.at != after.at else tr("gas of {at} reads otherwise")
+        span = told.format(before=self._reader.time(before.at), at=at)
         return f"{state}, pH {self._lines.ph(before)} to {self._lines.ph(after)}, PaCO2 {paco2} ({span})"
 
     def _verdict(self, v: Verdict) -> str:
@@ -92,7 +103,7 @@ class _SinceWriter:
         judged = next((g for g in reversed(r.gases) if g.at == r.headline_gas_at), None)
         word = r.headline if judged is None else lowered(self._lines.headline(r, judged))
         judged_then = v.before is not None and v.before not in ("not yet known", "not judged", r.headline)
-        was = f" (was {v.before})" if judged_then else ""
+        was = tr(" (was {before})").format(before=v.before) if judged_then else ""
         what = "start" if r.anchor == "start" else "change"
         return f"{what} of {self._reader.time(r.anchor_at)} {word}{was}"
 
@@ -100,10 +111,10 @@ class _SinceWriter:
         text = f"{marker_name(f.marker, self._reader)} {self._reader.time(f.since)}"
         if f.settled_at is not None:
             by = f" by {f.settled_by}" if f.settled_by else ""
-            return f"{text}, settled {self._reader.time(f.settled_at)}{by}"
+            return tr("{text}, settled {time}{by}").format(text=text, time=self._reader.time(f.settled_at), by=by)
         if f.ended_at is not None:
-            return f"{text}, no longer met {self._reader.time(f.ended_at)}"
-        return f"{text}, undone by a correction" if f.undone_by_correction else text
+            return tr("{text}, no longer met {time}").format(text=text, time=self._reader.time(f.ended_at))
+        return tr("{text}, undone by a correction").format(text=text) if f.undone_by_correction else text
 
     def _done(self, done: Iterable[DueFigure]) -> Iterator[str]:
         """Each kind once, with the times at which it was done."""
@@ -116,7 +127,8 @@ class _SinceWriter:
     def _fact(self, fact: FactChange) -> str:
         name = channel_name(fact.channel)
         if fact.channel in _LONG:
-            return f"{name}: new" if fact.before is None else f"{name}: changed (was: {str(fact.before).rstrip('.')})"
+            told = tr("{name}: new") if fact.before is None else tr("{name}: changed (was: {before})")
+            return told.format(name=name, before=str(fact.before).rstrip("."))
         unit = self._reader.gas_unit
         old, new = (formats.quantity(fact.channel, v, unit) for v in (fact.before, fact.after))
         return opened(f"{name} {old} to {new}")

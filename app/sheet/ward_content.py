@@ -7,17 +7,18 @@ from collections.abc import Iterator
 from app import formats
 from app.formats import told_words
 from app.headline import headline
+from app.language import in_language as tr
 from app.sheet.due_lines import due_short, gases_due, others_due, skin_line
 from app.sheet.shapes import WardPage, WardRow
 from app.sheet.since_lines import compared_with
 from app.sheet.writer import (
     SKIN_OVERDUE,
-    STATES,
     SheetWriter,
     is_limited,
     limits_of_care,
     opened,
     quiet_since,
+    state_head,
     strength,
 )
 from app.ward.ordering import GAS
@@ -35,12 +36,13 @@ class WardWriter(SheetWriter):
         if shift.end < self._h.end:  # the shift still runs: its figures must not be taken for those of its end
             span += f", as of {self._reader.time(shift.end)}"
         if self._h.as_known_at is not None:  # on every page: a review must never be taken for the handover
-            span += f", as known at {formats.wall(self._h.as_known_at, self._reader.zone)}"
+            span += tr(", as known at {wall}").format(wall=formats.wall(self._h.as_known_at, self._reader.zone))
         ends, quiet = [quiet_since(s) for s in shift.episodes], ""
         if ends and all(at is not None for at in ends):
-            quiet = f"nothing logged since {self._moment(max(at for at in ends if at is not None))}"
+            last = self._moment(max(at for at in ends if at is not None))
+            quiet = tr("nothing logged since {moment}").format(moment=last)
         return WardPage(
-            title, f"Shift {span}", self._see_first(),
+            title, tr("Shift {span}").format(span=span), self._see_first(),
             tuple(self._ward_row(n, s) for n, s in enumerate(shift.episodes, 1)),
             tuple(gases_due(shift.episodes, self._reader)), tuple(self._ward_missing()),
             skin_line(shift.episodes, self._reader), quiet,
@@ -50,7 +52,7 @@ class WardWriter(SheetWriter):
     def _see_first(self) -> str:
         first = self._h.shift.first
         if first is None or first.now.concern.why is None:
-            return "No episode stands out: no open flag, nothing overdue."
+            return tr("No episode stands out: no open flag, nothing overdue.")
         return f"{first.now.label}: {sentence(first.now.concern.why, self._reader)}"
 
     def _ward_row(self, number: int, s: ShiftFigures) -> WardRow:
@@ -74,7 +76,7 @@ class WardWriter(SheetWriter):
         plan = str(s.now.profile.get("plan") or formats.ABSENT).rstrip(".")
         newest = s.told[-1] if s.told else None
         called = f"{self._clock(newest.at)} {told_words(newest.words or 'somebody')}" if newest else formats.ABSENT
-        return f"Plan: {plan}. Told: {called.rstrip('.')}."
+        return tr("Plan: {plan}. Told: {rstrip}.").format(plan=plan, rstrip=called.rstrip("."))
 
     def _support_short(self, f: EpisodeFigures) -> str:
         """Support and oxygen as short as a ward's list needs them."""
@@ -82,7 +84,7 @@ class WardWriter(SheetWriter):
         if s.ended_at is not None:
             return self._support_now(f)
         if s.break_since is not None:
-            return f"OFF THE MASK since {self._clock(s.break_since)}"
+            return tr("OFF THE MASK since {clock}").format(clock=self._clock(s.break_since))
         pressure = ""
         if s.ipap_cmH2O is not None and s.epap_cmH2O is not None:
             pressure = f" {formats.trimmed(s.ipap_cmH2O)}/{formats.trimmed(s.epap_cmH2O)} cmH2O"
@@ -95,10 +97,11 @@ class WardWriter(SheetWriter):
     def _change_of_state(self, s: ShiftFigures) -> str:
         before, after = s.state_before, s.state_after
         if s.began and after:
-            return "support started this shift"
+            return tr("support started this shift")
         if not before or not after or before == after:
             return ""
-        return f"{STATES[before].lower()} before, now {STATES[after].lower()}"
+        told = tr("{before} before, now {now}")
+        return told.format(before=state_head(before).lower(), now=state_head(after).lower())
 
     def _latest_response(self, f: EpisodeFigures) -> str:
         judged = [r for r in f.responses if r.headline not in ("not yet known", "not judged")]
@@ -106,26 +109,26 @@ class WardWriter(SheetWriter):
         text = ""
         if judged:
             r = judged[-1]
-            anchor = "support started" if r.anchor == "start" else self._lines.anchor(r)
+            anchor = tr("support started") if r.anchor == "start" else self._lines.anchor(r)
             text = f"{self._moment(r.anchor_at)} {anchor}. {opened(self._lines.of(f).verdict(r, brief=True))}"
         if waiting is not None:
-            text += f" Change of {self._moment(waiting.anchor_at)}: response not yet known."
-        return text.strip() or "No response judged yet."
+            text += tr(" Change of {moment}: response not yet known.").format(moment=self._moment(waiting.anchor_at))
+        return text.strip() or tr("No response judged yet.")
 
     def _flag_line(self, f: FlagFigure) -> str:
         return f"{f.tier.upper()} {self._remark(f)}"
 
     def _ward_missing(self) -> Iterator[str]:
         """What nobody recorded and the next shift will ask for."""
-        for channel, word in (("handover_remark", "handover remark"), ("plan", "plan"),
-                              ("ceiling_of_care", "ceiling of care"),
-                              ("resuscitation", "resuscitation decision")):  # fmt: skip
+        for channel, word in (("handover_remark", tr("handover remark")), ("plan", "plan"),
+                              ("ceiling_of_care", tr("ceiling of care")),
+                              ("resuscitation", tr("resuscitation decision"))):  # fmt: skip
             without = [s.now.label for s in self._h.shift.episodes
                        if not s.now.profile.get(channel) and s.now.support.ended_at is None]  # fmt: skip
             if without and len(without) == len(self._h.shift.episodes):
-                yield f"No {word} recorded for any episode."
+                yield tr("No {word} recorded for any episode.").format(word=word)
             elif without:
-                yield f"No {word} recorded: {', '.join(without)}."
+                yield tr("No {word} recorded: {those}.").format(word=word, those=", ".join(without))
 
 
 def _sign(f: EpisodeFigures) -> str:

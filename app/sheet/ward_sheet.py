@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from app.language import in_language as tr
 from app.sheet.blocks import Block, Heading, Signatures, Text, draw_all, draw_tier, height_of
 from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Align, Press, Style
 from app.sheet.shapes import WardPage, WardRow
@@ -153,7 +154,7 @@ class SeeFirst:
     def draw(self, press: Press, x: float, y: float, width: float) -> None:
         high = self.height(press, width) - press.gap(6)
         press.box(x, y, width, high, fill=PALE, weight=1.2)
-        press.text(x + press.gap(8), y + press.gap(4.2), press.gap(80), "See first", Style(_FIRST.size))
+        press.text(x + press.gap(8), y + press.gap(4.2), press.gap(80), tr("See first"), Style(_FIRST.size))
         press.text(x + press.gap(64), y + press.gap(4.2), width - press.gap(74), self.words, _FIRST)
 
 
@@ -203,18 +204,20 @@ def ward_blocks(page: WardPage, *, brief: int = 0) -> list[Block]:
     blocks: list[Block] = [SeeFirst(page.see_first)]
     if page.quiet:
         blocks.append(Text(f"{page.quiet[:1].upper()}{page.quiet[1:]}.", STRONG))
-    blocks.append(Heading("All episodes, in order of concern", f"{len(page.rows)} in this shift"))
-    blocks += [RowBlock(r, r in short) for r in page.rows] or [Text("No episode stood in this shift.")]
-    blocks.append(Heading("Due in the next 4 h, and overdue", "gases first, the longest overdue on top"))
+    count = tr("{count} in this shift").format(count=len(page.rows))
+    blocks.append(Heading(tr("All episodes, in order of concern"), count))
+    blocks += [RowBlock(r, r in short) for r in page.rows] or [Text(tr("No episode stood in this shift."))]
+    blocks.append(Heading(tr("Due in the next 4 h, and overdue"), tr("gases first, the longest overdue on top")))
     if page.due:
         blocks.append(DueList(page.due))
     blocks += [Text(f"{line}.") for line in page.due_other]
     if page.skin or not (page.due or page.due_other):
-        blocks.append(Text(page.skin or "Nothing is due."))
-    small = [f"Missing from the record: {' '.join(page.missing)}"] if page.missing else []
+        blocks.append(Text(page.skin or tr("Nothing is due.")))
+    small = [tr("Missing from the record: {those}").format(those=" ".join(page.missing))] if page.missing else []
     small += [page.compared] if page.compared else []
     if short:
-        small.append(f"On their own pages stand the responses of {', '.join(r.label for r in short)}.")
+        told = tr("On their own pages stand the responses of {beds}.")
+        small.append(told.format(beds=", ".join(r.label for r in short)))
     if small:
         blocks.append(Text(" ".join(small), SMALL))
     return blocks

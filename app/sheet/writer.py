@@ -9,6 +9,7 @@ from app import formats
 from app.certainty import starred
 from app.finding_names import marker_name
 from app.headline import ever_acidotic
+from app.language import in_language as tr
 from app.operations.handover import Handover
 from app.words import Reader
 from app.words.figure_lines import FigureLines
@@ -18,10 +19,16 @@ from core.record.instant import MINUTE
 
 STATES: Final = {"severe": "Severe acidosis", "acidotic": "Acidotic", "resolved": "Not acidotic"}
 """A gas that is not acidotic may still be a bad one: in a heading "resolved" would say too much."""
+
 SKIN_OVERDUE: Final = "skin_check_overdue"
 QUIET: Final = 30 * MINUTE
 """A record that ends so long before the shift does is said to."""
 _STRENGTH = {"escalate": 0, "concern": 1, "remark": 2}
+
+
+def state_head(state: str | None) -> str:
+    """The state of a gas as a heading says it."""
+    return tr(STATES.get(state or "", "State not known"))
 
 
 class SheetWriter:
@@ -36,16 +43,16 @@ class SheetWriter:
         """The last gas that tells the state, and the state."""
         gases = [g for g in f.gases if g.site != "venous"]
         if not gases:
-            return "No arterial or capillary gas recorded."
+            return tr("No arterial or capillary gas recorded.")
         last = gases[-1]
-        state = STATES.get(last.state or "", "State not known")
+        state = state_head(last.state)
         if last.state == "resolved" and last.ph_above is not None:
-            state += f", pH above {formats.fixed(last.ph_above, 2)}"
+            state += tr(", pH above {fixed}").format(fixed=formats.fixed(last.ph_above, 2))
         pf = f", P/F {self._lines.pressure(last.pf_mmHg)}" if last.pf_mmHg is not None else ""
         if f.now.oxygen_failure and f.now.pf_mmHg is not None:
-            first = "P/F" if ever_acidotic(f) else "Hypoxaemic: P/F"
+            first = "P/F" if ever_acidotic(f) else tr("Hypoxaemic: P/F")
             state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}; {lowered(state)}", ""
-        off = ", last gas drawn off support" if last.off_support else ""
+        off = tr(", last gas drawn off support") if last.off_support else ""
         return (
             f"{state}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
         )
@@ -53,23 +60,27 @@ class SheetWriter:
     def _support_now(self, f: EpisodeFigures) -> str:
         s = f.support
         if s.ended_at is not None:
-            return f"Support ended {formats.wall(s.ended_at, self._reader.zone)}" + (
+            return tr("Support ended {wall}").format(wall=formats.wall(s.ended_at, self._reader.zone)) + (
                 f", {s.end_reason}" if s.end_reason else ""
             )
         text = self._lines.settings(s)
-        return f"{text}; OFF THE MASK since {self._clock(s.break_since)}" if s.break_since is not None else text
+        if s.break_since is None:
+            return text
+        told = tr("{settings}; OFF THE MASK since {time}")
+        return told.format(settings=text, time=self._clock(s.break_since))
 
     def _who(self, f: EpisodeFigures) -> str:
         p = f.profile
         age, indication = p.get("age"), p.get("indication")
         parts = (
-            formats.quantity("age", age) if age is not None else "age not recorded", word_of(p.get("sex"), "sex"),
-            formats.quantity("indication", indication) if indication else "indication not recorded",
+            formats.quantity("age", age) if age is not None else tr("age not recorded"), word_of(p.get("sex"), "sex"),
+            formats.quantity("indication", indication) if indication else tr("indication not recorded"),
         )  # fmt: skip
         return ", ".join(parts)
 
     def _remark(self, f: FlagFigure) -> str:
-        return f"{starred(marker_name(f.marker, self._reader), f.sure)}, since {self._moment(f.since)}"
+        name = starred(marker_name(f.marker, self._reader), f.sure)
+        return tr("{flag}, since {moment}").format(flag=name, moment=self._moment(f.since))
 
     def _clock(self, at: int) -> str:
         return formats.clock(at, self._reader.zone)
@@ -90,13 +101,13 @@ def limits_of_care(profile: Mapping[str, float | str | None]) -> str:
     """How far treatment goes, in whole words: full support must not be taken for a full ceiling of anything else."""
     ceiling = formats.quantity("ceiling_of_care", profile.get("ceiling_of_care") or formats.ABSENT)
     decided = str(profile.get("resuscitation") or formats.ABSENT)
-    resuscitation = f"resuscitation: {decided}" if decided == formats.ABSENT else decided
-    return f"Ceiling of care: {ceiling}; {resuscitation}."
+    resuscitation = tr("resuscitation: {decided}").format(decided=decided) if decided == formats.ABSENT else decided
+    return tr("Ceiling of care: {ceiling}; {resuscitation}.").format(ceiling=ceiling, resuscitation=resuscitation)
 
 
 def is_limited(profile: Mapping[str, float | str | None]) -> bool:
     """Whether anything is withheld: who reads only the bold print must read that."""
-    open_ended = ("full", "for resuscitation", "not recorded", None, "")
+    open_ended = ("full", tr("for resuscitation"), tr("not recorded"), None, "")
     return any(profile.get(k) not in open_ended for k in ("ceiling_of_care", "resuscitation"))
 
 
@@ -117,4 +128,4 @@ def opened(text: str) -> str:
 
 def word_of(value: float | str | None, name: str) -> str:
     """A fact, or that it was not recorded."""
-    return str(value) if value else f"{name} not recorded"
+    return str(value) if value else tr("{name} not recorded").format(name=name)
