@@ -76,6 +76,17 @@ def source_entries(connection: sa.Connection, source_id: str) -> tuple[Entry, ..
     return tuple(entries_where(connection, _b.source_id == source_id))
 
 
+def origins(connection: sa.Connection, episode: str) -> dict[str, str]:
+    """The names of the files that an episode's entries came from, by the entry's id; typed entries are left out."""
+    query = (
+        sa.select(_e.id, _s.name)
+        .join_from(s.entry, s.batch, _e.batch_seq == _b.seq)
+        .join(s.source, _s.id == _b.source_id)
+        .where(_e.episode_id == episode)
+    )
+    return {str(row[0]): str(row[1]) for row in connection.execute(query)}
+
+
 def source_spans(connection: sa.Connection, source_id: str) -> tuple[SampleSpan, ...]:
     """Where a source's samples lie, one span per episode and channel."""
     query = sa.select(_c.episode_id, _c.channel, sa.func.min(_c.t0), sa.func.max(_c.t1)).join_from(

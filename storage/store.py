@@ -318,6 +318,11 @@ class Store(StoreCare):
         with self._opened.database.read() as connection:
             return taken.source_entries(connection, source_id)
 
+    def origins(self, episode: str) -> dict[str, str]:
+        """The names of the files that an episode's entries came from, by the entry's id; typed ones are left out."""
+        with self._opened.database.read() as connection:
+            return taken.origins(connection, episode)
+
     def source_spans(self, source_id: str) -> tuple[taken.SampleSpan, ...]:
         """Where a source's device samples lie, one span per episode and channel."""
         with self._opened.database.read() as connection:

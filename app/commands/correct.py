@@ -4,10 +4,11 @@ from __future__ import annotations
 
 import argparse
 import sys
+from collections.abc import Mapping
 
 from app.commands.context import Context
 from app.formats import plain, quantity, wall
-from app.operations import correction
+from app.operations import correction, intake
 from app.operations import episode as episodes
 from app.operations import flag as flags
 from app.operations.outcome import Outcome
@@ -38,7 +39,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
     with context.open(read_only=args.entry is None) as store:
         record = episodes.load(store, args.episode)
         if args.entry is None:
-            return _list(context, record, reader)
+            return _list(context, record, reader, intake.origins(store, context.by, context.now(), record.key).value)
         entry_id = _whole_id(record, args.entry)
         old = next(s.entry for s in record.standing if s.entry.id == entry_id)
         asked = _questions(context, store, args, entry_id)
@@ -112,13 +113,14 @@ def _whole_id(record: Episode, start: str) -> str:
     return found[0]
 
 
-def _list(context: Context, record: Episode, reader: Reader) -> int:
+def _list(context: Context, record: Episode, reader: Reader, files: Mapping[str, str]) -> int:
     entries = [s.entry for s in record.standing]
-    rows = [f"{e.id[:SHORT_ID]}  {wall(e.at, reader.zone)}  {CHANNELS[e.channel].name}  {_value(e, reader)}  {e.by}"
-            for e in entries]  # fmt: skip
+    rows = [f"{e.id[:SHORT_ID]}  {wall(e.at, reader.zone)}  {CHANNELS[e.channel].name}  {_value(e, reader)}  "
+            + ", ".join(x for x in (e.by, files.get(e.id, "")) if x) for e in entries]  # fmt: skip
     value = {"episode": record.key, "entries": [
         {"id": e.id, "at": zoned_iso(e.at, reader.zone), "channel": e.channel, "value": e.number if e.words is None
-         else e.words, "unit": CHANNELS[e.channel].unit, "by": e.by} for e in entries]}  # fmt: skip
+         else e.words, "unit": CHANNELS[e.channel].unit, "by": e.by, "file": files.get(e.id)}
+        for e in entries]}  # fmt: skip
     context.answer("\n".join(rows) or "No entries.", value)
     return 0
 

@@ -20,9 +20,9 @@ from app.chooser import Chooser
 from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
 from app.failure import Failure
-from app.formats import quantity, wall
+from app.formats import inert, quantity, wall
 from app.forms.typed_time import typed_near
-from app.operations import correction
+from app.operations import correction, intake
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
 from app.phrases import channel_name
@@ -38,6 +38,7 @@ from core.record.local_time import local
 from core.record.message import Message, RecordError
 
 _ENTRY = Qt.ItemDataRole.UserRole
+_BY = 3
 
 
 class Act(StrEnum):
@@ -83,6 +84,7 @@ class CorrectDialog(AskingDialog):
         self._add_fields({key: label for key, label in labels.items() if key != record.key})
         self._fill()
         self._act_chosen()
+        model.ask(intake.origins, record.key, done=self._show_origins)
         self.resize(theme.px(860), theme.px(640))
 
     def _add_list(self) -> None:
@@ -145,6 +147,15 @@ class CorrectDialog(AskingDialog):
         first = self.list.topLevelItem(0)
         if first is not None:
             self.list.setCurrentItem(first)
+
+    def _show_origins(self, outcome: Outcome[dict[str, str]]) -> None:
+        """Beside who wrote a value the file it came from."""
+        for row in range(self.list.topLevelItemCount()):
+            item = self.list.topLevelItem(row)
+            name = outcome.value.get(str(item.data(0, _ENTRY))) if item is not None else None
+            if item is not None and name:
+                item.setText(_BY, self.tr("{by}, {file}").format(by=item.text(_BY), file=name))
+                item.setToolTip(_BY, inert(item.text(_BY)))
 
     def _chosen(self) -> None:
         found = self._entry()

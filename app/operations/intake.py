@@ -172,6 +172,11 @@ def taken(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[
     return Outcome(tuple(s for s in store.sources() if s.kind != "stream"), store.head())
 
 
+def origins(store: Store, who: str, now: Instant, request: str) -> Outcome[dict[str, str]]:
+    """The files that an episode's entries came from, by the entry's id; what was typed is left out."""
+    return Outcome(store.origins(request), store.head())
+
+
 def withdraw(store: Store, who: str, now: Instant, request: str) -> Outcome[Withdrawn]:
     """Withdraw all that a file brought, by the id of its source; what lay under its samples comes back.
 

@@ -3,6 +3,7 @@
 import pytest
 from PySide6.QtCore import Qt
 
+from app.dialogs.correct import CorrectDialog
 from app.dialogs.intake import IntakeDialog
 from app.intake_window.mapping_dialog import MappingDialog
 from app.operations import intake as operations
@@ -219,3 +220,21 @@ def test_several_files_follow_each_other_and_one_answer_serves_for_all_parts(qtb
         assert leak.t.size == 181, "the minutes that two parts hold stand once"
         assert len(store.sources()) == 3
         assert all(s.facts["clock_shift_s"] == -60 for s in store.sources())
+
+
+def test_every_value_says_which_file_it_came_from(qtbot, window, tmp_path):
+    path = tmp_path / "results.hl7"
+    path.write_text(message(gas(), **WHEN))
+    dialog = IntakeDialog(window.model, ReadRequest(path, episode="bed-7"), window.reader, window.theme, window)
+    dialog.open()
+    until(qtbot, lambda: dialog.intake is not None)
+    taken(qtbot, window, dialog)
+    with Store.open(tmp_path / "ward.luffmark") as store:
+        record = store.episode("bed-7")
+    correct = CorrectDialog(window.model, record, {"bed-7": "Bed 7"}, window.reader, window.theme, window)
+    correct.open()
+    rows = [correct.list.topLevelItem(r) for r in range(correct.list.topLevelItemCount())]
+    until(qtbot, lambda: any("results.hl7" in row.text(3) for row in rows))
+    assert {row.text(3) for row in rows if row.text(2).endswith("kPa")} == {"HL7, results.hl7"}
+    assert "AB" in {row.text(3) for row in rows}, "what was typed names its person alone"
+    correct.reject()
