@@ -19,7 +19,7 @@ from app.notices import Surroundings
 from app.operations import store as store_operations
 from app.operations.outcome import Outcome
 from app.session import Changed, Session, SessionModel, What
-from app.steps import DAMAGE, Step, steps_out_of, word_of
+from app.steps import STANDING, Step, steps_out_of, word_of
 from app.theme import Theme
 from app.words import sentence
 from core.record.message import Message
@@ -223,13 +223,13 @@ class Keeping(QObject):
 
     def _backup_failed(self, failure: Failure) -> None:
         """Silence would be taken for a backup. Why is said with it, or already stands there."""
-        why = sentence(failure.message, self._window.reader) if failure.message.key not in DAMAGE else ""
+        why = sentence(failure.message, self._window.reader) if failure.message.key not in STANDING else ""
         told = f"{self.tr('No backup was taken.')} {why}".rstrip()
         self.notices.tell(BACKUP, told, ways=ways_out_of(failure.message.key))
 
     def _troubled(self, failure: Failure) -> None:
-        """Whoever met the damage may have said so in passing; it stands here for as long as the store is open."""
-        if failure.message.key in DAMAGE:
+        """Whoever met the trouble may have said so in passing; it stands here for as long as the store is open."""
+        if failure.message.key in STANDING:
             told = sentence(failure.message, self._window.reader)
             self.notices.tell(DAMAGED, told, lasting=True, ways=ways_out_of(failure.message.key))
 

@@ -39,6 +39,8 @@ _STEPS: Final[dict[str, tuple[Step, ...]]] = {
 }
 DAMAGE: Final = frozenset(key for key, steps in _STEPS.items() if Step.SALVAGE in steps)
 """Troubles that a damaged file makes, whenever they are met."""
+STANDING: Final = DAMAGE | {"store.file_gone"}
+"""Troubles that stay until something is done: they are said for as long as the store is open."""
 
 
 def steps_out_of(key: str) -> tuple[Step, ...]:

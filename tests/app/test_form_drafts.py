@@ -1,4 +1,4 @@
-"""A form that was being filled in when a program ended is offered again, with every field; nothing of it is recorded."""
+"""A form that was being filled in when a program ended is offered again, every field; nothing of it is recorded."""
 
 import json
 import os

@@ -1,5 +1,6 @@
 """A store that cannot be written to opens for reading, and the window says so for as long as it is so."""
 
+import sys
 from functools import partial
 
 import pytest
@@ -91,6 +92,22 @@ def test_a_damaged_page_that_opening_does_not_read_is_told_soon_after_with_the_w
         assert dialog.source.text() == str(max(backups_in(backups.folder, path).items())[1])
         assert dialog.new.text().endswith("ward-restored.luffmark")
         dialog.reject()
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="an open file cannot be removed there")
+def test_a_file_that_was_taken_away_under_the_window_is_told_and_the_line_stays(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    with open_window(qtbot, path) as window:
+        path.rename(tmp_path / "elsewhere.luffmark")
+        window.strip.set_text("rr 24")
+        settled(qtbot, window)
+        window.strip.line.returnPressed.emit()
+        until(qtbot, lambda: "no longer there" in window.keeping.notices.plain())
+        assert list(window.keeping.notices.ways) == ["restore"]
+        assert window.strip.line.text() == "rr 24"
+        assert "Not recorded" in window.strip.plain()
+    with Store.open(tmp_path / "elsewhere.luffmark", read_only=True) as store:
+        assert store.verify() == ()
 
 
 def lose_page_of(path, index):

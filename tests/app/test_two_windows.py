@@ -1,4 +1,4 @@
-"""Two windows on one store: each shows the other's entries by itself, nothing is lost, and no driver's words are seen."""
+"""Two windows on one store: each shows the other's entries by itself, nothing is lost, no driver's words are seen."""
 
 from functools import partial
 

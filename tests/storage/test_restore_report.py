@@ -1,4 +1,4 @@
-"""What a store holds beyond a backup is told entry by entry, also where the store is damaged or its passphrase changed."""
+"""What a store holds beyond a backup is told entry by entry, also where it is damaged or its passphrase changed."""
 
 from __future__ import annotations
 
