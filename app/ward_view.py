@@ -210,7 +210,7 @@ class WardView(QWidget):
                 content.as_of if content.shift.start <= content.as_of <= content.shift.end else None,
                 self.tr("now") if content.live else self.tr("then"),
                 self.tr("Bed"),
-                self.tr("State now, next due"),
+                self.tr("State now, next due") if content.live else self.tr("State then, next due"),
                 self._empty_word(),
                 self.tr("Ward: {count} episodes along the shift's clock").format(count=len(lanes)),
             )

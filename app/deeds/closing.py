@@ -33,10 +33,13 @@ class ClosingDeeds(WritingDeeds):
     def do_close_handover(self) -> None:
         """Ask who gives and who takes; keep the sheet as it is printed now."""
         from app.dialogs.close_handover import CloseHandoverDialog
-        from app.formats import span
+        from app.formats import span, wall
 
         shift, session = self.window.shift(), self.model.session
-        told = span(shift.start, min(shift.end, session.moment()), session.zone)
+        told = span(shift.start, shift.end, session.zone)
+        if session.moment() < shift.end:
+            still = self.tr("{shift}, which still runs: its figures are as of {time}")
+            told = still.format(shift=told, time=wall(session.moment(), session.zone))
         self._dialog = CloseHandoverDialog(
             told, (session.person, self.window.preferences.paper), self.close_handover, self.window.theme, self.window
         )

@@ -125,14 +125,17 @@ def test_what_came_later_is_marked_in_lane_and_panels_and_no_line_is_called_now(
     marked = next(lane for lane in window.pages.ward.lanes.spec.lanes if "later" in lane.subtitle)
     assert "came later" in marked.sentence
     assert window.pages.ward.lanes.spec.now_word == "then"
+    assert "State then, next due" in repr(window.pages.ward.lanes.spec)
     window.open_episode(marked.key)
     settled(qtbot, window)
+    assert "Then, 28-Mar-2026 02:40" in window.pages.episode.readout.plain()
     spec = window.pages.episode.stack.spec
     ticks = [t for t in spec.events if "recorded later" in t.word]
     assert ticks
     assert all(t.doubtful and t.at <= THEN for t in ticks)
     assert spec.now_word == "then"
     press(qtbot, window, "Alt+Home")
+    until(qtbot, lambda: "Now, 28-Mar-2026 05:30" in window.pages.episode.readout.plain())
     until(qtbot, lambda: not any("later" in lane.subtitle for lane in window.pages.ward.lanes.spec.lanes))
     until(qtbot, lambda: not any("later" in t.word for t in window.pages.episode.stack.spec.events))
     assert window.pages.ward.lanes.spec.now_word == "now"
