@@ -24,6 +24,9 @@ GAS: Final[dict[str, str]] = {
     "gas.consistency_needs_three": "pH, PCO2 and bicarbonate are needed to check them against each other",
     "gas.fio2_differs":
         "FiO2 on the gas ({gas_fio2:fraction}) and in the settings ({setting:fraction}) differ.",
+    "gas.implausible":
+        "pH and PCO2 hardly belong together: they make a bicarbonate of {calculated:1} mmol/L, outside {low:trim} to "
+        "{high:trim}. One of the two is probably wrong.",
     "gas.inconsistent":
         "pH, PCO2 and bicarbonate do not agree: {hco3:1} mmol/L reported, {calculated:1} calculated "
         "(at most {within:trim} apart is accepted).",

@@ -4,7 +4,8 @@ from typing import Final
 
 _STATE = "pick severe=severe acidosis;acidotic=acidotic;resolved=not acidotic"
 _DOUBT = (
-    "pick unconfirmed=holds a value nobody confirmed;inconsistent=does not agree with itself;"
+    "pick unconfirmed=holds a value nobody confirmed;unusual=holds an unusual value;"
+    "implausible=holds values that hardly belong together;inconsistent=does not agree with itself;"
     "corrected=was corrected;disputed=is disputed: corrected twice;"
     "site assumed=has no site recorded, taken as arterial"
 )
@@ -28,6 +29,9 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.no_reason_logged": "No reason for it is logged.",
     "evidence.not_trusted": "{quantity:name} was not to be trusted for {minutes:minutes} from {since:time} to "
         "{at:time}.",
+    "evidence.not_settled": "Not judged again by the gas of {gas_at:time}[[ (pH {ph:2})]]: "
+        "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;off support=it was taken off support;"
+        "no answer=it neither meets nor ends it}[[{missing:list} missing]].",
     "evidence.off_support": "Taken off support.",
     "evidence.on_oxygen": "On FiO2 {fio2:fraction}.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
@@ -81,6 +85,7 @@ DUE: Final[dict[str, str]] = {
 CONCERN: Final[dict[str, str]] = {
     "concern.due_soon": "{what:due} is due by {until:time}.",
     "concern.ended": "Support ended at {ended_at:time}.",
+    "concern.state": "pH {ph:2} at {gas_at:time}, {state:" + _STATE + "}, {support}",
     "concern.flag": "{tier:pick escalate=Escalate;concern=Concern;remark=Remark}: {marker:marker}"
         "{unconfirmed:pick yes=*;else=}, since {since:time}[[; last gas {state:" + _STATE + "}]]"
         "{more:pick 0=;1=, one more group of flags;else=, # more groups of flags}.",

@@ -68,5 +68,10 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.tiring_not_excluded":
         "Respiratory rate {before:0} to {after:0}/min while PaCO2 rose and P/F did not: tiring not excluded.",
     "response.unconfirmed": "{side:pick " + _WHO + "} of {gas_at:time} holds a value nobody confirmed.",
+    "response.unusual": "{side:pick " + _WHO + "} of {gas_at:time} holds an unusual value.",
+    "response.implausible": "{side:pick " + _WHO + "} of {gas_at:time} holds values that hardly belong together.",
+    "response.not_better_in_doubt": "Not called better: {side:pick " + _SIDE + "} of {gas_at:time} is in doubt.",
+    "response.towards_normal": "pH {before:2} was above its limits and {after:2} is within them: "
+        "counted as a fall all the same.",
     "response.value_missing": "{quantity:name} not reported on {side:pick " + _SIDE + "}.",
 }  # fmt: skip

@@ -113,7 +113,7 @@ def episode_figures(
         label=ctx.episode.label,
         zone=episode.zone,
         profile=profile(ctx.episode),
-        support=support_figure(ctx.episode, ctx.settings, ctx.support, as_of),
+        support=support_figure(ctx.episode, ctx.settings, ctx.support, as_of, policy.freshness.silence_h.value),
         responses=ctx.responses,
         gases=ctx.gases,
         pf=ctx.pf,

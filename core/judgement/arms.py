@@ -65,6 +65,8 @@ def co2_arm(base: GasFigure, gas: GasFigure, policy: Policy, quiet: bool = False
     said = [_ph_said(base, gas, policy, ph_sign), _paco2_said(base, gas, policy, co2_sign)]
     if verdict == OVER_CORRECTION:
         said.insert(0, why.over_correction(gas, base))
+    if ph_sign == -1 and _alkalosis_ended(base, gas, policy):
+        said.append(why.towards_normal(base.ph or 0.0, gas.ph or 0.0))
     return Arm(verdict, tuple(said), co2_sign or 0)
 
 
@@ -111,6 +113,12 @@ def _over_corrected(base: GasFigure, gas: GasFigure, policy: Policy) -> bool:
         return False
     carried = base.ph is None or base.ph <= limit
     return carried and _hypercapnic(base, policy)
+
+
+def _alkalosis_ended(base: GasFigure, gas: GasFigure, policy: Policy) -> bool:
+    """pH came down from above its upper limit to within its limits."""
+    low, high = policy.state.acidotic_below_ph.value, policy.state.alkalotic_above_ph.value
+    return base.ph is not None and gas.ph is not None and base.ph > high and low <= gas.ph <= high
 
 
 def _hypercapnic(gas: GasFigure, policy: Policy) -> bool:
@@ -191,6 +199,14 @@ def _off_range(spo2: float, seen: Oxygenation, oxygen_given: bool) -> tuple[floa
     if spo2 > seen.high and oxygen_given:
         return spo2 - seen.high, "above"
     return 0.0, "within"
+
+
+def sure(verdict: str | None, base: GasFigure, gas: GasFigure) -> str | None:
+    """A verdict, but no `better` that a value in doubt would make: nobody may be reassured by a slip of the pen.
+
+    Worse and mixed stand, with the doubt beside them.
+    """
+    return None if verdict == BETTER and (base.in_doubt or gas.in_doubt) else verdict
 
 
 def verdict(co2: Arm, oxygen: Arm, co2_active: bool, of_oxygen_change: bool = False) -> str | None:

@@ -1,8 +1,9 @@
 """Whom to see first and why: the rank of an episode among the ward's.
 
-An open flag that is to be escalated comes first, then concern, then what is overdue. Among equals the state of the
-last gas drives the order: severe before acidotic before the rest; then how long a flag has stood. Comfort care lowers
-the rank and hides nothing.
+An open flag that is to be escalated comes first, then concern, then what is overdue. The state of the last gas holds
+the rank up where no flag does: severe stands with the concerns, acidotic with what is overdue. Among equals it drives
+the order: severe before acidotic before the rest, without support before on it; then how long a flag has stood.
+Comfort care lowers the rank and hides nothing.
 """
 
 from __future__ import annotations
@@ -12,13 +13,16 @@ from collections.abc import Iterable
 from core.judgement.context import Context
 from core.judgement.flags import open_flags, strength
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
-from core.judgement.shapes import Concern, DueFigure, FlagFigure
+from core.judgement.shapes import Concern, DueFigure, FlagFigure, GasFigure
 from core.record.instant import HOUR, Instant
 from core.record.message import Message, Value
 
 ESCALATE, CONCERN, OVERDUE, REMARK, SOON, QUIET, ENDED = range(7)
 _TIER_RANK = {"escalate": ESCALATE, "concern": CONCERN, "remark": REMARK}
 _STATE_ORDER = {"severe": 0.0, "acidotic": 1.0}
+_STATE_RANK = {"severe": CONCERN, "acidotic": OVERDUE}
+UNSUPPORTED = 0.5
+"""How much nearer to the sicker state an acidosis stands that no support treats."""
 COMFORT_FROM = REMARK
 UNCONFIRMED = frozenset({"from memory", "common practice"})
 """How sure a threshold is that a ward has to confirm: it says so wherever it is shown."""
@@ -33,6 +37,9 @@ def concern(ctx: Context, flags: Iterable[FlagFigure], due: Iterable[DueFigure])
     if end is not None and end <= ctx.as_of:
         return Concern(ENDED, 0.0, Message("concern.ended", {"ended_at": end, "by": ctx.support.ended_by}))
     rank, why, since = _ranked(ctx, flags, due)
+    floor = _STATE_RANK.get(_state(ctx) or "", QUIET)
+    if floor < rank:
+        rank, why = floor, _state_why(ctx)
     if ctx.comfort_care:
         rank = max(rank, COMFORT_FROM)
     return Concern(rank, _order(ctx, flags, since), why)
@@ -78,11 +85,33 @@ def _flag_why(ctx: Context, flag: FlagFigure, standing: list[FlagFigure]) -> Mes
 
 
 def _state(ctx: Context) -> str | None:
-    return next((g.state for g in reversed(ctx.gases) if g.site in STANDS_FOR_ARTERIAL and g.state), None)
+    gas = _last_with_state(ctx)
+    return gas.state if gas is not None else None
+
+
+def _last_with_state(ctx: Context) -> GasFigure | None:
+    return next((g for g in reversed(ctx.gases) if g.site in STANDS_FOR_ARTERIAL and g.state), None)
+
+
+def _supported(ctx: Context) -> bool:
+    return ctx.support.on_support(ctx.as_of)
+
+
+def _state_why(ctx: Context) -> Message | None:
+    gas = _last_with_state(ctx)
+    if gas is None:
+        return None
+    values: dict[str, Value] = {"state": gas.state, "gas_at": gas.at, "ph": gas.ph,
+                                "support": "on support" if _supported(ctx) else "not on support"}  # fmt: skip
+    return Message("concern.state", values)
 
 
 def _order(ctx: Context, flags: tuple[FlagFigure, ...], since: Instant) -> float:
-    """State first, then the number of groups that flag, then how long it has stood (at most two days)."""
+    """State and support first, then the number of groups that flag, then how long it has stood (two days at most)."""
     groups = len({f.group for f in open_flags(flags) if f.tier != "remark"})
     hours = min((ctx.as_of - since) / HOUR, 48.0)
-    return _STATE_ORDER.get(_state(ctx) or "", 2.0) * 100.0 - min(groups, 9) * 10.0 - hours / 48.0 * 9.0
+    state = _state(ctx)
+    step = _STATE_ORDER.get(state or "", 2.0) - (
+        UNSUPPORTED if state in _STATE_ORDER and not _supported(ctx) else 0.0
+    )
+    return step * 100.0 - min(groups, 9) * 10.0 - hours / 48.0 * 9.0

@@ -11,6 +11,7 @@ from dataclasses import dataclass, replace
 
 from core.judgement.context import Context
 from core.judgement.flag_history import History, history_of, transitions, word_on
+from core.judgement.markers.gas_points import not_settled
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
 from core.judgement.markers.registry import MARKERS, ORDER, Marker
@@ -36,7 +37,7 @@ def evaluate(ctx: Context, seen: Observed | None = None) -> tuple[FlagFigure, ..
         for spell in spells_of(seen, marker, ctx.policy.markers[key])
     ]
     history = history_of(e for e in ctx.episode.transitions)
-    flags = _identified(found, history, ctx)
+    flags = _identified(found, history, seen)
     return tuple(_with_strongest([*flags, *_vanished(flags, history, ctx)]))
 
 
@@ -71,7 +72,7 @@ def flag_id(marker: str, since: Instant) -> str:
     return f"{marker}@{iso(since)}"
 
 
-def _identified(found: list[_Met], history: dict[str, History], ctx: Context) -> list[FlagFigure]:
+def _identified(found: list[_Met], history: dict[str, History], seen: Observed) -> list[FlagFigure]:
     """A flag that the ledger already holds keeps its name and what people said, though its beginning moved."""
     taken: set[str] = set()
     flags = []
@@ -82,7 +83,7 @@ def _identified(found: list[_Met], history: dict[str, History], ctx: Context) ->
         )
         name = known.flag_id if known is not None else own
         taken.add(name)
-        flags.append(_figure(met, name, known, ctx))
+        flags.append(_figure(met, name, known, seen))
     return flags
 
 
@@ -92,24 +93,28 @@ def _same(history: History, met: _Met) -> bool:
     return history.marker == met.marker.key and inside
 
 
-def _figure(met: _Met, name: str, known: History | None, ctx: Context) -> FlagFigure:
+def _figure(met: _Met, name: str, known: History | None, seen: Observed) -> FlagFigure:
     rule, spell = met.rule, met.spell
     flag = FlagFigure(
         flag_id=name, marker=met.marker.key, group=rule.group,
         tier="remark" if spell.outside_population else rule.tier, since=spell.since,
-        evidence=(*spell.evidence, *_beside(rule, spell, ctx)), source=rule.source, sure=rule.sure,
-        policy=ctx.policy.hash, ended_at=spell.until, state=RAISED if spell.until is None else NO_LONGER,
+        evidence=(*spell.evidence, *_beside(met, seen)), source=rule.source, sure=rule.sure,
+        policy=seen.policy.hash, ended_at=spell.until, state=RAISED if spell.until is None else NO_LONGER,
         outside_population=spell.outside_population, detail_sure=rule.detail_sure or "",
     )  # fmt: skip
     return flag if known is None else _as_handled(flag, known)
 
 
-def _beside(rule: MarkerRule, spell: Spell, ctx: Context) -> tuple[Message, ...]:
-    """What is said beside the evidence: outside the population, nothing newer for long, a ceiling of care."""
+def _beside(met: _Met, seen: Observed) -> tuple[Message, ...]:
+    """What is said beside the evidence: outside the population, a newer gas that does not settle it, nothing newer
+    for long, a ceiling of care."""
+    rule, spell, ctx = met.rule, met.spell, seen.ctx
     said: list[Message] = []
     if spell.outside_population:
         said.append(Message("evidence.outside_population", {"population": rule.population}))
     newest = max((int(m.values.get(k) or 0) for m in spell.evidence for k in ("at", "second_at")), default=0)
+    unsettled = not_settled(seen, met.marker.key, spell.evidence) if spell.until is None else None
+    said += [unsettled] if unsettled is not None else []
     if spell.until is None and 0 < newest < ctx.as_of - rule.stale_min * MINUTE:
         said.append(Message("evidence.stale", {"at": newest, "minutes": (ctx.as_of - newest) // MINUTE}))
     ceiling = ctx.episode.latest_text("ceiling_of_care")

@@ -10,14 +10,20 @@ from core.judgement.policy import Policy
 from core.judgement.shapes import GasFigure
 from core.physiology import acid_base, consistency, oxygenation, saturation, specimen
 from core.physiology.formula import Reasoned, reasoned
+from core.record.channels import CHANNELS
 from core.record.gas_sample import GasSample
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
+from core.record.reading import soft_doubts
 from core.record.settings import SettingsInForce
 from core.record.support import SupportTime
 
 STANDS_FOR_ARTERIAL = frozenset({"arterial", "capillary"})
 """Sites whose pH and PCO2 judge. A capillary PO2 does not stand for an arterial one."""
+
+SHOWN_UNUSUAL = ("ph", "paco2", "pao2")
+JUDGED_BY = frozenset({"ph", "paco2", "pao2", "hco3", "site", "gas_fio2"})
+"""Channels of a gas that verdicts rest on: one of them that nobody confirmed puts the gas in doubt."""
 
 SATURATION_WITHIN = 5.0
 """Points of % between a reported saturation and the one that PO2 and pH make one expect (common practice)."""
@@ -52,6 +58,9 @@ def gas_figure(
         warnings.append(Message("gas.negative_gradient", {"aa": aa, "fio2": fio2}))
     consistent = _consistent(gas, calculated.value, policy, reasons, warnings)
     _check_saturation(gas, warnings)
+    unusual = _unusual(gas)
+    implausible = _implausible(calculated.value, policy)
+    warnings += [*unusual, *([implausible] if implausible is not None else [])]
     if gas.site_assumed:
         warnings.append(Message("gas.site_assumed", {}))
     state = state_of(gas, policy, reasons)
@@ -64,7 +73,9 @@ def gas_figure(
         aa_gradient_mmHg=aa, consistent=consistent, state=state,
         hypercapnic=None if isnan(gas.paco2) else above(gas.paco2, policy.state.hypercapnia_mmHg),
         ph_above=_ph_above(gas, policy),
-        off_support=off, doubt=gas.doubt, corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
+        off_support=off, doubt=gas.doubt or bool(unusual) or implausible is not None,
+        unconfirmed=bool(gas.doubted & JUDGED_BY), implausible=implausible,
+        corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
         warnings=tuple(warnings), ids=gas.ids, sao2_percent=_number(gas.sao2),
         explanations=_explanations(gas, policy) if consistent is False else (),
         rule_out=specimen.venous_rule_out(gas.paco2, shock=shock) if gas.site == "venous" else None,
@@ -171,6 +182,20 @@ def _temperature(gas: GasSample, settings: SettingsInForce, policy: Policy) -> F
         return FigureInput()
     i = int(abs(near.t - gas.at).argmin())
     return FigureInput(float(near.v[i]), int(near.t[i]))
+
+
+def _unusual(gas: GasSample) -> list[Message]:
+    """Values outside their soft limits. Who confirmed one took it for true; that it is rare is still said."""
+    return [m for key in SHOWN_UNUSUAL for m in soft_doubts(CHANNELS[key], getattr(gas, key))
+            if not isnan(getattr(gas, key))]  # fmt: skip
+
+
+def _implausible(calculated: float, policy: Policy) -> Message | None:
+    """A pH and a PCO2 whose bicarbonate hardly exists: one of the two is probably wrong, whoever confirmed it."""
+    low, high = policy.state.bicarbonate_least_mmol_L.value, policy.state.bicarbonate_most_mmol_L.value
+    if isnan(calculated) or low <= calculated <= high:
+        return None
+    return Message("gas.implausible", {"calculated": float(calculated), "low": low, "high": high})
 
 
 def _check_saturation(gas: GasSample, warnings: list[Message]) -> None:

@@ -2,14 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable
 
 from core.judgement import arms
 from core.judgement.context import Context
 from core.judgement.markers.observed import Observed
 from core.judgement.shapes import GasFigure, JudgedGas, NowFigure, ResponseFigure
-from core.record.channels import CHANNELS, Group
-from core.record.instant import Instant
+from core.judgement.support_findings import last_logged
 
 
 def now_figure(seen: Observed) -> NowFigure:
@@ -31,7 +30,7 @@ def now_figure(seen: Observed) -> NowFigure:
         since_start=since.verdict if since is not None else None,
         since_start_gain_lost=since is not None and since.gain_lost,
         off_mask_since=off.start if off is not None else None,
-        last_logged_at=max(_logged(ctx), default=None),
+        last_logged_at=last_logged(ctx.episode),
         spo2_target_low=ctx.target.low,
         spo2_target_high=ctx.target.high,
         spo2_target_prescribed=ctx.target.prescribed,
@@ -72,13 +71,3 @@ def newest_pf(seen: Observed) -> GasFigure | None:
 def _running(ctx: Context) -> bool:
     end = ctx.support.end
     return end is None or end > ctx.as_of
-
-
-def _logged(ctx: Context) -> Iterator[Instant]:
-    """The newest moment of every channel but those of the profile; those of the gases are among them."""
-    for key, series in ctx.episode.series.items():
-        if len(series) and CHANNELS[key].group is not Group.PROFILE:
-            yield int(series.t[-1])
-    for key, words in ctx.episode.words.items():
-        if len(words) and CHANNELS[key].group is not Group.PROFILE:
-            yield int(words.t[-1])

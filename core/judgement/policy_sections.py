@@ -63,6 +63,8 @@ class StateRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True
     hypercapnia_mmHg: Limit
     hypoxaemia_pf_mmHg: Limit
     consistent_within_mmol_L: Limit
+    bicarbonate_least_mmol_L: Limit = Limit(8.0, "A bicarbonate by pH and PCO2 hardly ever seen", "common practice")
+    bicarbonate_most_mmol_L: Limit = Limit(60.0, "A bicarbonate by pH and PCO2 hardly ever seen", "common practice")
     reported_bicarbonate: Literal["actual", "standard"]
     temperature_correction: bool = False
     """Show gases at the patient's temperature beside the values as measured at 37 degC, which alone judge."""
@@ -94,6 +96,8 @@ class Freshness(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True)
     temp_min: Limit
     gcs_min: Limit
     acvpu_min: Limit
+    silence_h: Limit = Limit(12.0, "Support that nobody has written about for so long is presumed", "common practice")
+    """Hours without any entry or sample after which time on the mask is presumed, no longer known."""
 
     def of(self, channel: str) -> float:
         """The minutes allowed for one input of a score; KeyError for a channel that no score takes."""

@@ -119,7 +119,7 @@ class _Judge:
         said = headline(self.ctx, anchor, base, judged, until) if anchor.judges else _no_effect(anchor)
         if said.headline == arms.NOT_YET and self._oxygen_by_spo2_alone(anchor):
             said = self._by_spo2(anchor, until) or said
-        rules, gas = self.ctx.policy.response, base.gas
+        rules, gas, by_at = self.ctx.policy.response, base.gas, self._by_moment
         return ResponseFigure(
             anchor_at=anchor.at, anchor=anchor.kind, first_at=anchor.first_at, steps=anchor.steps,
             effects=anchor.effects,
@@ -132,6 +132,7 @@ class _Judge:
             oxygen_arm_active=gas is not None and arms.hypoxaemia(gas, self.ctx.policy),
             headline=said.headline, headline_gas_at=said.gas_at, state=said.state, why=said.why, gases=judged,
             superseded_at=until,
+            in_doubt=_rests_on_doubt(base.gas, by_at.get(said.gas_at or -1)),
             gain_lost=any(j.at == said.gas_at and j.since_start.gain_lost for j in judged if j.attributable),
         )  # fmt: skip
 
@@ -149,6 +150,10 @@ class _Judge:
             else:
                 break
         return tuple(out)
+
+    @cached_property
+    def _by_moment(self) -> dict[Instant, GasFigure]:
+        return {g.at: g for g in self.ctx.gases}
 
     @cached_property
     def _gas_minutes(self) -> list[int]:
@@ -170,12 +175,15 @@ class _Judge:
         active = arms.acute_hypercapnia(base.gas, self.ctx.policy) or (anchor.oxygen_only and self.at_risk)
         also = self._also_changed(index, base.gas.at, gas.at)
         apart = arms.pf_comparable(base.gas, gas, self.ctx.policy)
+        found = arms.verdict(co2, oxygen, active, anchor.oxygen_only)
+        verdict = arms.sure(found, base.gas, gas)
+        unsure = (why.in_doubt(base.gas, gas),) if verdict != found else ()
         return JudgedGas(
             gas.at, minutes, when, difference(base.gas.ph, gas.ph),
             difference(base.gas.paco2_mmHg, gas.paco2_mmHg),
             None if apart else difference(base.gas.pf_mmHg, gas.pf_mmHg),
-            arms.verdict(co2, oxygen, active, anchor.oxygen_only), co2.verdict, oxygen.verdict, gas.state, True,
-            since, also, (*co2.why, *oxygen.why, *_cautions(base, gas, when, since, also),
+            verdict, arms.sure(co2.verdict, base.gas, gas), arms.sure(oxygen.verdict, base.gas, gas), gas.state, True,
+            since, also, (*unsure, *co2.why, *oxygen.why, *_cautions(base, gas, when, since, also),
                           *why.doubts(base.gas, gas)),
         )  # fmt: skip
 
@@ -202,7 +210,7 @@ class _Judge:
             return replace(plain, why=tuple(said))
         co2 = arms.co2_arm(base, gas, self.ctx.policy)
         compared = _with_deltas(plain, self.ctx.policy, base, gas)
-        return replace(compared, co2_arm=co2.verdict, why=(*said, *co2.why))
+        return replace(compared, co2_arm=arms.sure(co2.verdict, base, gas), why=(*said, *co2.why))
 
     def _also_changed(self, index: int, after: Instant, before: Instant) -> tuple[Step, ...]:
         """The steps of other anchors between two gases: what else could have made the difference."""
@@ -290,6 +298,11 @@ def _last(vitals: VitalsNear, closes: Instant, opens: Instant) -> Found | None:
     return None
 
 
+def _rests_on_doubt(base: GasFigure | None, gas: GasFigure | None) -> bool:
+    """Whether a value of the headline's gas, or of what it is compared with, is marked as doubtful."""
+    return gas is not None and (gas.doubt or gas.disputed or (base is not None and (base.doubt or base.disputed)))
+
+
 _NOT_COMPARED = SinceStart(reasons={"verdict": Message("response.not_compared_with_start", {})})
 
 
@@ -313,8 +326,7 @@ def _cautions(base: Baseline, gas: GasFigure, when: str, since: SinceStart, also
     said = [base.why] if base.early and base.why else []
     if when == "early":
         said.append(why.about_gas("early", gas))
-    if "gain_lost" in since.reasons:
-        said.append(since.reasons["gain_lost"])
+    said += [since.reasons[key] for key in ("gain_lost", "oxygen_gain_lost") if key in since.reasons]
     if gas.site == "capillary":
         said.append(why.about_gas("capillary", gas))
     if also:

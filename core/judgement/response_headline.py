@@ -34,6 +34,9 @@ def headline(
     by_at = {g.at: g for g in ctx.gases if g.at in moments} if moments else {}
     steady = [j for j in judged if _counts(by_at[j.at], j)]
     decided = [j for j in steady if j.verdict is not None]
+    if steady and by_at[steady[-1].at].in_doubt and steady[-1].verdict is None:
+        # an older better must not stand in for the newest gas: somebody has to settle what that one says
+        return Headline(arms.NOT_JUDGED, steady[-1].at, steady[-1].state, steady[-1].why)
     if decided:
         newest = decided[-1]
         assert newest.verdict is not None

@@ -53,6 +53,17 @@ def spo2_range(before: float | None, after: float, low: float, high: float, wher
     return Message("response.spo2_range", values)
 
 
+def in_doubt(baseline: GasFigure, gas: GasFigure) -> Message:
+    """Better is not said: a value of the gas, or of its baseline, is in doubt."""
+    side = "gas" if gas.in_doubt else "baseline"
+    return Message("response.not_better_in_doubt", {"side": side, "gas_at": (gas if gas.in_doubt else baseline).at})
+
+
+def towards_normal(before: float, after: float) -> Message:
+    """A pH that fell from above its normal limits to within them counts as a fall by the letter of the rule."""
+    return Message("response.towards_normal", {"before": before, "after": after})
+
+
 def tiring(rr_before: float, rr_after: float, noise: float, beyond: bool) -> Message:
     """The rate fell while PaCO2 rose and P/F did not: tiring is not excluded."""
     values: Values = {"before": rr_before, "after": rr_after, "noise": noise, "beyond_noise": beyond}
@@ -76,7 +87,8 @@ def doubts(baseline: GasFigure | None, gas: GasFigure) -> list[Message]:
     for side, g in (("baseline", baseline), ("gas", gas)):
         if g is None:
             continue
-        for name, true in (("unconfirmed", g.doubt), ("inconsistent", g.consistent is False),
+        for name, true in (("unconfirmed", g.unconfirmed), ("unusual", g.doubt and not g.in_doubt),
+                           ("implausible", g.implausible is not None), ("inconsistent", g.consistent is False),
                            ("corrected", g.corrected), ("disputed", g.disputed)):  # fmt: skip
             if true:
                 said.append(Message(f"response.{name}", {"side": side, "gas_at": g.at}))

@@ -221,6 +221,8 @@ def score_figure(
     why = dict(reasons)
     if score.points is None:
         why["points"] = Message("score.inputs_missing", {"missing": ", ".join(score.missing)})
+    if score.population_reason is not None and score.population_reason.key == "population.input_unknown":
+        why["population"] = score.population_reason
     caveat = score.population_reason or (score.notes[0] if score.notes else None)
     return ScoreFigure(
         points=score.points, lowest=score.lowest, highest=score.highest, at=at, missing=score.missing,

@@ -26,14 +26,15 @@ def hypoxaemic_not_hypercapnic(
     """
     if on_mask is not True:
         return OUTSIDE, Message("population.not_on_mask" if on_mask is False else "population.support_unknown")
-    if pf is None or not isfinite(pf):
-        return OUTSIDE, Message("population.input_unknown", {"input": "pf"})
-    if pf > 300.0:
+    known_pf = pf is not None and isfinite(pf)
+    if pf is not None and known_pf and pf > 300.0:
         return OUTSIDE, Message("population.not_hypoxaemic", {"pf": float(pf), "limit": 300.0})
     acidotic = None if ph is None or not isfinite(ph) else ph < 7.35
     hypercapnic = None if paco2 is None or not isfinite(paco2) else bool(above_pressure_limit(paco2, 6.0))
-    if acidotic and hypercapnic:
+    if acidotic and hypercapnic:  # said before a P/F that is missing: it is outside whatever that is
         return OUTSIDE, Message("population.acute_hypercapnia", {"ph": ph, "paco2": paco2})
+    if not known_pf:
+        return OUTSIDE, Message("population.input_unknown", {"input": "pf"})
     if acidotic is False or hypercapnic is False:
         return INSIDE, None
     return OUTSIDE, Message("population.input_unknown", {"input": "ph" if acidotic is None else "paco2"})

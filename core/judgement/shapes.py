@@ -39,6 +39,12 @@ class SupportFigure:
     hours_on_mask_last_24h: float | None = None
     on_mask: bool = False
     break_since: Instant | None = None
+    silent_since: Instant | None = None
+    """The last entry or sample, where nothing has been logged for longer than the policy allows while support is
+    taken to run: the hours since are presumed. None elsewhere."""
+    hours_presumed: float | None = None
+    """Of `hours_on_mask`, those since then."""
+    hours_presumed_last_24h: float | None = None
     reasons: Reasons = field(default_factory=dict)
 
 
@@ -74,6 +80,11 @@ class GasFigure:
     """The upper limit of pH where this one is above it, e.g. 7.45; None elsewhere."""
     off_support: bool = False
     doubt: bool = False
+    """Holds a value outside what is usual, confirmed or not, or values that cannot belong together: always shown."""
+    unconfirmed: bool = False
+    """Nobody confirmed a value that its verdict would rest on."""
+    implausible: Message | None = None
+    """Values that cannot belong together, confirmed or not; None where nothing speaks against them."""
     corrected: bool = False
     disputed: bool = False
     reasons: Reasons = field(default_factory=dict)
@@ -87,6 +98,11 @@ class GasFigure:
     """What a venous PCO2 says of arterial hypercapnia; None for other samples."""
     temperature: FigureInput | None = None
     """The patient's, nearest to the gas; None while the policy reports gases uncorrected (the default)."""
+
+    @property
+    def in_doubt(self) -> bool:
+        """Too doubtful to call anything better, or to end a flag."""
+        return self.unconfirmed or self.implausible is not None
 
 
 @dataclass(frozen=True, slots=True)
@@ -108,7 +124,12 @@ class SinceStart:
     delta_pf_mmHg: float | None = None
     verdict: str | None = None
     gain_lost: bool = False
+    """Of pH or of P/F; the reasons `gain_lost` and `oxygen_gain_lost` say which, from what and when."""
     reasons: Reasons = field(default_factory=dict)
+    ph_lost: bool | None = None
+    """The gain in pH and PaCO2 is lost; None where the gas does not hold what it takes to tell."""
+    pf_lost: bool | None = None
+    """The same of P/F."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -180,6 +201,8 @@ class ResponseFigure:
     """The next anchor's first step, where there is one."""
     gain_lost: bool = False
     """The headline's gas fell back from the best gas since the start, beyond noise: never "better" alone."""
+    in_doubt: bool = False
+    """The headline's gas, or its baseline, holds a doubtful value: said wherever the headline stands."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -33,10 +33,12 @@ class GasSample:
     gas_fio2: float = nan
     texts: Mapping[str, tuple[str, str]] | None = None
     doubt: bool = False
+    """Any of its values nobody confirmed; `doubted` names the channels."""
     corrected: bool = False
     disputed: bool = False
     recorded_at: Instant = 0
     ids: tuple[str, ...] = ()
+    doubted: frozenset[str] = frozenset()
 
     def text(self, channel: str) -> str | None:
         """The text typed for a channel when it was typed in the canonical unit, else None."""
@@ -77,6 +79,7 @@ def _one(at: Instant, rows: list[Standing]) -> GasSample | None:
         disputed=any(s.disputed for s in rows) or _two_values(rows),
         recorded_at=max(s.entry.recorded_at for s in rows),
         ids=tuple(s.entry.id for s in rows),
+        doubted=frozenset(s.entry.channel for s in rows if s.entry.doubt),
     )
 
 

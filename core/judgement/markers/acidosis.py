@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable, Iterator
 
 from core.judgement.markers import evidence as say
+from core.judgement.markers.gas_points import from_gases
 from core.judgement.markers.observed import Observed
-from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.markers.spells import Point, Spell
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.shapes import GasFigure
 from core.record.instant import MINUTE
@@ -30,7 +31,7 @@ def _low(gas: GasFigure, limit: float) -> Message:
 
 def ph_below_severe(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """pH below 7.25 on any arterial or capillary gas: early, late or off support."""
-    return from_points(ph_points(seen.gases, rule.limits["ph"], _off))
+    return from_gases(seen, ph_points(seen.gases, rule.limits["ph"], _off))
 
 
 def _off(gas: GasFigure) -> tuple[Message, ...]:
@@ -41,7 +42,7 @@ def ph_below_715(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """pH below 7.15 once support has begun."""
     start = seen.support.start
     gases = (g for g in seen.gases if start is not None and (seen.drawn_on_support(g) or g.off_support))
-    return from_points(ph_points(gases, rule.limits["ph"], _off))
+    return from_gases(seen, ph_points(gases, rule.limits["ph"], _off))
 
 
 def ph_below_715_before_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -53,12 +54,12 @@ def ph_below_715_before_support(seen: Observed, rule: MarkerRule) -> Iterable[Sp
         before = not seen.drawn_on_support(gas) and not gas.off_support
         met = before and gas.ph < rule.limits["ph"]
         points.append(Point(gas.at, met, (_low(gas, rule.limits["ph"]), *say.gas_doubts(gas)) if met else ()))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def ph_below_720_on_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """pH below 7.20 once on support."""
-    return from_points(ph_points(seen.on_support_gases, rule.limits["ph"]))
+    return from_gases(seen, ph_points(seen.on_support_gases, rule.limits["ph"]))
 
 
 def ph_720_725_twice(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -80,7 +81,7 @@ def ph_720_725_twice(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             twice = Message("evidence.twice", {"quantity": "ph", "first": first.ph, "first_at": first.at,
                             "second": gas.ph, "second_at": gas.at, "low": low, "high": high})  # fmt: skip
             points.append(Point(gas.at, True, (twice, *say.gas_doubts(gas))))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def acidosis_off_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -91,7 +92,7 @@ def acidosis_off_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             met = gas.off_support and gas.ph < rule.limits["ph"]
             told = (_low(gas, rule.limits["ph"]), *_off(gas), *say.gas_doubts(gas)) if met else ()
             points.append(Point(gas.at, met, told))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def venous_ph_below_severe(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -103,4 +104,4 @@ def venous_ph_below_severe(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         met = gas.site == "venous" and gas.ph < rule.limits["ph"]
         extra = Message("evidence.venous", {"at": gas.at})
         points.append(Point(gas.at, met, (_low(gas, rule.limits["ph"]), extra, *say.gas_doubts(gas)) if met else ()))
-    return from_points(points)
+    return from_gases(seen, points)

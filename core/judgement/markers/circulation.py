@@ -8,6 +8,7 @@ from collections.abc import Iterable, Iterator
 import numpy as np
 
 from core.judgement.markers import evidence as say
+from core.judgement.markers.gas_points import from_gases
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Point, Spell, from_points, from_runs, held, united
 from core.judgement.policy_sections import MarkerRule
@@ -40,12 +41,12 @@ def sbp_below_90(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 def lactate_above_2(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """Lactate above 2 mmol/L on any sample."""
-    return from_points(_lactate(seen, rule))
+    return from_gases(seen, _lactate(seen, rule))
 
 
 def lactate_above_4(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """Lactate above 4 mmol/L on any sample."""
-    return from_points(_lactate(seen, rule))
+    return from_gases(seen, _lactate(seen, rule))
 
 
 def _lactate(seen: Observed, rule: MarkerRule) -> Iterator[Point]:
@@ -70,7 +71,7 @@ def lactate_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             told = (say.changed("lactate", then, before.at, now, gas.at), *_after_beta_agonist(seen, rule, gas))
             points.append(Point(gas.at, rise and now > rule.limits["lactate"], told))
         before = gas
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def _after_beta_agonist(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tuple[Message, ...]:

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from itertools import pairwise
 
 from core.judgement import arms
 from core.judgement.markers import evidence as say
+from core.judgement.markers.gas_points import from_gases
 from core.judgement.markers.observed import Observed
-from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.markers.spells import Point, Spell
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.response_noise import direction, paco2_noise, pf_noise, ph_noise, rr_noise
 from core.judgement.shapes import GasFigure
@@ -29,7 +29,7 @@ def paco2_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             continue
         low = min(known, key=lambda g: (g.paco2_mmHg or 0.0, -g.at))
         points.append(_rise(seen, rule, low, gas))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def _rise(seen: Observed, rule: MarkerRule, low: GasFigure, gas: GasFigure) -> Point:
@@ -46,58 +46,66 @@ def _rise(seen: Observed, rule: MarkerRule, low: GasFigure, gas: GasFigure) -> P
         told.append(say.value_is("paco2", gas.paco2_mmHg, say.ABOVE, usual, gas.at))
     elif above:
         told.append(say.pressure_is("paco2", gas.paco2_mmHg, say.ABOVE, limit, gas.at))
-    poor = _no_better(seen, low, gas)
-    met = above or bool(poor)
+    poor, known = _no_better(seen, low, gas)
+    met = True if above or poor else False if known else None
     return Point(gas.at, met, (*told, *poor, *say.gas_doubts(gas)))
 
 
-def _no_better(seen: Observed, low: GasFigure, gas: GasFigure) -> list[Message]:
-    """Rate or P/F that is known and not better. A value that is not known says nothing."""
+def _no_better(seen: Observed, low: GasFigure, gas: GasFigure) -> tuple[list[Message], bool]:
+    """Rate or P/F that is known and not better, and whether both are known: what is not known says nothing."""
     said: list[Message] = []
     before, after = seen.vitals.rate(low.at, 0, gas.at), seen.rate_near(gas.at)
-    if before is not None and after is not None and after.at > before.at:
+    rated = before is not None and after is not None and after.at > before.at
+    if rated and before is not None and after is not None:
         noise = rr_noise(seen.policy.noise, before.device and after.device)
         if direction(after.value - before.value, noise) != -1:
             said.append(say.changed("rr", before.value, before.at, after.value, after.at, noise))
-    if arms.pf_comparable(low, gas, seen.policy) is None and low.pf_mmHg is not None and gas.pf_mmHg is not None:
+    comparable = arms.pf_comparable(low, gas, seen.policy) is None
+    if comparable and low.pf_mmHg is not None and gas.pf_mmHg is not None:
         noise = pf_noise(seen.policy.noise, low.pf_mmHg)
         if direction(gas.pf_mmHg - low.pf_mmHg, noise) != 1:
             said.append(say.changed("pf", low.pf_mmHg, low.at, gas.pf_mmHg, gas.at, noise))
-    return said
+    return said, rated and comparable
 
 
 def rate_falling_worse_gas(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """Rate down beyond noise between two gases while pH fell or PaCO2 rose beyond noise: tiring."""
+    """Rate down beyond noise between two gases while pH fell or PaCO2 rose beyond noise: tiring.
+
+    Each value is compared with the newest one before it: a gas that lacks it parts nothing and ends nothing.
+    """
     points = []
-    gases = [g for g in seen.gases if not g.off_support]
-    for before, gas in pairwise(gases):
-        if gas.at - before.at > rule.limits["within_h"] * HOUR:
-            points.append(Point(gas.at, None))
-            continue
-        worse = _worse(seen, before, gas)
+    reach = int(rule.limits["within_h"] * HOUR)
+    gases = [g for g in seen.gases if not g.off_support and (g.ph is not None or g.paco2_mmHg is not None)]
+    for i, gas in enumerate(gases[1:], 1):
+        earlier = [g for g in gases[:i] if gas.at - g.at <= reach]
+        worse, told = _worse(seen, earlier, gas)
         if not worse:
-            points.append(Point(gas.at, False))
+            points.append(Point(gas.at, False if told else None))
             continue
-        rr = _rate_change(seen, before, gas)
+        rr = next((found for base, _ in worse if (found := _rate_change(seen, base, gas)) is not None), None)
         if rr is None:
             points.append(Point(gas.at, None))
             continue
-        told, slower = rr
-        points.append(Point(gas.at, slower, (told, *worse, *say.gas_doubts(gas))))
-    return from_points(points)
+        said, slower = rr
+        points.append(Point(gas.at, slower, (said, *(m for _, m in worse), *say.gas_doubts(gas))))
+    return from_gases(seen, points)
 
 
-def _worse(seen: Observed, before: GasFigure, gas: GasFigure) -> list[Message]:
-    said: list[Message] = []
-    if before.ph is not None and gas.ph is not None:
+def _worse(seen: Observed, earlier: list[GasFigure], gas: GasFigure) -> tuple[list[tuple[GasFigure, Message]], bool]:
+    """What is worse than in the newest gas before that holds it, and whether the gas holds all of that."""
+    said: list[tuple[GasFigure, Message]] = []
+    ph = next((g for g in reversed(earlier) if g.ph is not None), None)
+    if ph is not None and ph.ph is not None and gas.ph is not None:
         noise = ph_noise(seen.policy.noise)
-        if direction(gas.ph - before.ph, noise) == -1:
-            said.append(say.changed("ph", before.ph, before.at, gas.ph, gas.at, noise))
-    if before.paco2_mmHg is not None and gas.paco2_mmHg is not None:
-        noise = paco2_noise(seen.policy.noise, before.paco2_mmHg)
-        if direction(gas.paco2_mmHg - before.paco2_mmHg, noise) == 1:
-            said.append(say.changed("paco2", before.paco2_mmHg, before.at, gas.paco2_mmHg, gas.at, noise))
-    return said
+        if direction(gas.ph - ph.ph, noise) == -1:
+            said.append((ph, say.changed("ph", ph.ph, ph.at, gas.ph, gas.at, noise)))
+    co2 = next((g for g in reversed(earlier) if g.paco2_mmHg is not None), None)
+    if co2 is not None and co2.paco2_mmHg is not None and gas.paco2_mmHg is not None:
+        noise = paco2_noise(seen.policy.noise, co2.paco2_mmHg)
+        if direction(gas.paco2_mmHg - co2.paco2_mmHg, noise) == 1:
+            said.append((co2, say.changed("paco2", co2.paco2_mmHg, co2.at, gas.paco2_mmHg, gas.at, noise)))
+    held = [have is not None for before, have in ((ph, gas.ph), (co2, gas.paco2_mmHg)) if before is not None]
+    return said, bool(held) and all(held)
 
 
 def _rate_change(seen: Observed, before: GasFigure, gas: GasFigure) -> tuple[Message, bool] | None:

@@ -39,6 +39,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "evidence.unknown": ("quantity",),
         "evidence.stale": ("at", "minutes"),
         "evidence.gas_doubt": ("doubt", "at"),
+        "evidence.not_settled": ("gas_at", "because", "missing", "ph"),
         "evidence.off_support": ("at",),
         "evidence.on_oxygen": ("fio2", "at"),
         "evidence.venous": ("at",),
@@ -71,6 +72,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "concern.flag": ("marker", "tier", "since", "more", "state", "unconfirmed"),
         "concern.overdue": ("what", "until"),
         "concern.due_soon": ("what", "until"),
+        "concern.state": ("state", "gas_at", "ph", "support"),
         "concern.ended": ("ended_at", "by"),
     }
 )
@@ -132,7 +134,9 @@ def unknown(quantity: str) -> Message:
 def gas_doubts(gas: GasFigure) -> tuple[Message, ...]:
     """What makes a gas doubtful. A doubt is always shown."""
     named = (
-        ("unconfirmed", gas.doubt),
+        ("unconfirmed", gas.unconfirmed),
+        ("unusual", gas.doubt and not gas.in_doubt),
+        ("implausible", gas.implausible is not None),
         ("inconsistent", gas.consistent is False),
         ("corrected", gas.corrected),
         ("disputed", gas.disputed),

@@ -18,7 +18,7 @@ from core.judgement.scores_binning import half_up_array
 from core.judgement.scores_news2 import ACVPU, BINS, SCALE_1, SCALE_2_ON_AIR, SCALE_2_ON_OXYGEN, Bins
 from core.record.instant import HOUR, MINUTE
 from core.record.message import Message, Value
-from core.record.samples import Times, Values
+from core.record.samples import Flags, Times, Values
 
 OBSERVED = ("rr", "spo2", "hr", "sbp", "temp")
 
@@ -30,6 +30,8 @@ class Course:
     t: Times
     low: Values
     high: Values
+    known: Flags
+    """Which inputs each set holds, shapes (n, 7)."""
 
 
 def news2_course(seen: Observed) -> Course:
@@ -39,9 +41,12 @@ def news2_course(seen: Observed) -> Course:
     t = moments[counts >= 3]
     low, high = np.zeros(t.shape), np.zeros(t.shape)
     oxygen = _oxygen(seen, t)
+    known: list[Flags] = []
     for name in ("rr", "hr", "sbp", "temp"):
         decimals, bins = BINS[name]
-        _add(low, high, _points(bins, _fresh(seen, name, t), decimals), 0, max(p for _, p in bins))
+        points = _points(bins, _fresh(seen, name, t), decimals)
+        _add(low, high, points, 0, max(p for _, p in bins))
+        known.append(~np.isnan(points))
     spo2 = _fresh(seen, "spo2", t)
     if seen.episode.latest_text("spo2_scale") == "2":
         air, given = _points(SCALE_2_ON_AIR, spo2, 0), _points(SCALE_2_ON_OXYGEN, spo2, 0)
@@ -51,8 +56,10 @@ def news2_course(seen: Observed) -> Course:
         _add(low, high, _points(SCALE_1, spo2, 0), 0, 3)
     low += np.where(oxygen == 1, 2, 0)
     high += np.where(oxygen == 0, 0, 2)
-    _add(low, high, _consciousness(seen, t), 0, 3)
-    return Course(t, low, high)
+    awake = _consciousness(seen, t)
+    _add(low, high, awake, 0, 3)
+    known += [~np.isnan(spo2), ~np.isnan(oxygen), ~np.isnan(awake)]
+    return Course(t, low, high, np.column_stack(known))
 
 
 def _add(low: Values, high: Values, points: Values, least: float, most: float) -> None:
@@ -95,17 +102,28 @@ def _consciousness(seen: Observed, t: Times) -> Values:
 
 
 def news2_rise(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """NEWS2 2 or more over the patient's own low of the last 4 h, whatever is missing."""
+    """NEWS2 2 or more over the patient's own low of the last 4 h, whatever is missing.
+
+    A set that lacks an input of the one that met it ends nothing while that input could still make up the rise.
+    """
     course = seen.once(news2_course)
     span, rise = int(rule.limits["within_h"] * HOUR), rule.limits["points"]
     t, low, high = course.t.tolist(), course.low.tolist(), course.high.tolist()
     firsts = np.searchsorted(course.t, course.t - span).tolist()
-    points = []
+    points: list[Point] = []
+    met: int | None = None
     for k in range(1, len(t)):
         if firsts[k] == k:
             continue
         own = min(range(firsts[k], k), key=high.__getitem__)
         told: dict[str, Value] = {"score": "news2", "before": high[own], "before_at": t[own], "lowest": low[k],
                                   "highest": high[k], "at": t[k]}  # fmt: skip
-        points.append(Point(t[k], low[k] - high[own] >= rise, (Message("evidence.score_rise", told),)))
+        if low[k] - high[own] >= rise:
+            met = k
+            points.append(Point(t[k], True, (Message("evidence.score_rise", told),)))
+            continue
+        lacks = met is not None and bool((course.known[met] & ~course.known[k]).any())
+        open_still = lacks and high[k] - high[own] >= rise
+        met = met if open_still else None
+        points.append(Point(t[k], None if open_still else False))
     return from_points(points)

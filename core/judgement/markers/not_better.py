@@ -12,9 +12,10 @@ from functools import partial
 from math import isnan
 
 from core.judgement.markers import evidence as say
+from core.judgement.markers.gas_points import from_gases
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
-from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.markers.spells import Point, Spell
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.response_noise import direction, paco2_noise, ph_noise, rr_noise
 from core.judgement.shapes import GasFigure
@@ -22,6 +23,8 @@ from core.record.channels import BILEVEL_MODES
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message, Value
 
+LOST = {"ph": "gain_lost", "pf": "oxygen_gain_lost"}
+"""Where a gas says which gain it lost."""
 SEVERE, CONCERN, SETTLING = "severe", "concern", "settling"
 
 
@@ -80,8 +83,9 @@ class Judgement:
 def _judged(seen: Observed) -> list[Judgement]:
     """What each gas on support with a pH says.
 
-    A gas outside the hours that judge does not begin anything; it ends what began when pH reached 7.35 or has risen
-    beyond noise since the baseline of that beginning.
+    A gas outside the hours that judge does not begin anything; it ends what began when pH reached 7.35, has risen
+    beyond noise since the baseline of that beginning, or is better than at the start without having fallen back
+    since (`_better_since_start`).
     """
     rules = seen.policy.response
     low, high = rules.one_to_two_hours_from_min.value, rules.one_to_two_hours_to_min.value
@@ -96,10 +100,21 @@ def _judged(seen: Observed) -> list[Judgement]:
         over = not acidotic
         if poor is None and standing is not None and standing.base.ph is not None:
             over = over or direction(gas.ph - standing.base.ph, ph_noise(seen.policy.noise)) == 1
-            over = over or any(not not_gained(seen, c) for c in timely)
+            over = over or any(not not_gained(seen, c) for c in timely) or _better_since_start(seen, gas, standing)
         standing = poor if poor is not None else None if over else standing
         out.append(Judgement(gas, poor, _kind(seen, poor) if poor is not None else "", over))
     return out
+
+
+def _better_since_start(seen: Observed, gas: GasFigure, standing: Comparison) -> bool:
+    """A later gas that answers for the whole course: no longer severe, pH above that of the start beyond noise, and
+    at least that of the gas and the baseline by which a change had done nothing. So a drift down ends nothing, and
+    a patient who got better in steps, each inside the noise, is not called "not better" for hours."""
+    base = seen.start_baseline
+    if base is None or base.ph is None or gas.ph is None or gas.ph < seen.policy.state.severe_below_ph.value:
+        return False
+    held = gas.ph >= max(standing.base.ph or 0.0, standing.gas.ph or 0.0)
+    return held and direction(gas.ph - base.ph, ph_noise(seen.policy.noise)) == 1
 
 
 def _kind(seen: Observed, c: Comparison) -> str:
@@ -165,7 +180,7 @@ def _of_kind(seen: Observed, kind: str) -> Iterable[Spell]:
             points.append(Point(j.gas.at, j.kind == kind, partial(_told, seen, j.poor)))
         else:
             points.append(Point(j.gas.at, False if j.over else None))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def ph_not_better(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
@@ -197,7 +212,7 @@ def hdu_criterion(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             points.append(Point(gas.at, True, (value, *_told(seen, j.poor)[1:3], *say.gas_doubts(gas))))
         else:
             points.append(Point(gas.at, False if j.over else None))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def no_gain_after_hours(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -222,7 +237,7 @@ def no_gain_after_hours(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         told.append(say.changed("paco2", base.paco2_mmHg, base.at, gas.paco2_mmHg, gas.at))
         hours_told: dict[str, Value] = {"what": "on support", "hours": round(hours, 2), "limit": rule.limits["hours"]}
         points.append(Point(gas.at, met, (*told, Message("evidence.hours", hours_told), *say.gas_doubts(gas))))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def _paco2_lower(seen: Observed, base: GasFigure, gas: GasFigure) -> bool:
@@ -232,10 +247,13 @@ def _paco2_lower(seen: Observed, base: GasFigure, gas: GasFigure) -> bool:
     return direction(gas.paco2_mmHg - base.paco2_mmHg, noise) == -1
 
 
-def support_is_small(seen: Observed, at: Instant) -> bool:
-    """Hypercapnic COPD on an IPAP below the least, or on one pressure, with no reason logged."""
+def support_is_small(seen: Observed, at: Instant, by_gas: Instant | None = None) -> bool:
+    """Hypercapnic COPD on an IPAP below the least, or on one pressure, with no reason logged.
+
+    `by_gas`: the gas that says who the patient is, where it is not the newest at that moment.
+    """
     rule = seen.policy.markers.get("too_little_support")
-    if rule is None or not inside(seen, "hypercapnic copd", at):
+    if rule is None or not inside(seen, "hypercapnic copd", at if by_gas is None else by_gas):
         return False
     mode, ipap = seen.episode.text("mode").at(at), seen.settings.steps("ipap").at(at)
     if mode in BILEVEL_MODES or (mode is None and not isnan(ipap)):
@@ -255,13 +273,13 @@ def too_little_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     moments = sorted({*(g.at for g in seen.gases), *seen.settings.moments, *reasons})
     points = []
     for at in moments:
-        gas = seen.gas_at(at)
+        gas = seen.gas_on_support_at(at)
         if gas is None or gas.ph is None or gas.at < first:
             continue
-        poor = gas.ph < seen.policy.state.acidotic_below_ph.value and not gas.off_support
-        met = poor and inside(seen, rule.population, gas.at) and support_is_small(seen, at)
+        poor = gas.ph < seen.policy.state.acidotic_below_ph.value
+        met = poor and inside(seen, rule.population, gas.at) and support_is_small(seen, at, gas.at)
         points.append(Point(at, met, partial(_small, seen, rule, at, gas)))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def _small(seen: Observed, rule: MarkerRule, at: Instant, gas: GasFigure) -> tuple[Message, ...]:
@@ -292,13 +310,13 @@ def _relapse(seen: Observed, quantity: str) -> list[Spell]:
     points = []
     for gas in seen.on_support_gases:
         since = seen.since_start.get(gas.at)
-        if since is None:
-            continue
-        said = since.reasons.get("gain_lost") if since.gain_lost else None
-        lost = said is not None and said.values["quantity"] == quantity
+        lost = (
+            since.ph_lost if since is not None and quantity == "ph" else since.pf_lost if since is not None else None
+        )
+        said = since.reasons.get(LOST[quantity]) if since is not None else None
         told = (_lost(said, gas.at), *say.gas_doubts(gas)) if lost and said is not None else ()
-        points.append(Point(gas.at, lost, told))
-    return from_points(points)
+        points.append(Point(gas.at, lost, told))  # None: the gas lacks what it would take to tell
+    return from_gases(seen, points)
 
 
 def _lost(said: Message, at: Instant) -> Message:
@@ -328,4 +346,4 @@ def late_failure(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             well = {"since": failing, "hours": round((gas.at - failing) / HOUR, 1)}
             told = (value, Message("evidence.success", well), *say.gas_doubts(gas))
             points.append(Point(gas.at, True, told))
-    return from_points(points)
+    return from_gases(seen, points)

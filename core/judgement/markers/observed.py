@@ -99,6 +99,16 @@ class Observed:
         return after or (not self.support.start_recorded and gas.at >= start)
 
     @cached_property
+    def newest_gas(self) -> GasFigure | None:
+        """The newest sample of any site."""
+        return self.ctx.gases[-1] if self.ctx.gases else None
+
+    @cached_property
+    def doubtful_gases(self) -> frozenset[Instant]:
+        """The moments of the samples that hold what nobody confirmed, or what cannot belong together."""
+        return frozenset(g.at for g in self.ctx.gases if g.in_doubt)
+
+    @cached_property
     def by_moment(self) -> dict[Instant, GasFigure]:
         """The arterial and capillary gases by their moment."""
         return {g.at: g for g in self.gases}
@@ -116,6 +126,15 @@ class Observed:
         """The newest of them that has a pH."""
         i = bisect_right(self._gas_moments, at)
         return next((g for g in reversed(self.gases[:i]) if g.ph is not None), None)
+
+    def gases_until(self, at: Instant) -> tuple[GasFigure, ...]:
+        """The arterial and capillary gases at or before a moment."""
+        return self.gases[: bisect_right(self._gas_moments, at)]
+
+    def gas_on_support_at(self, at: Instant) -> GasFigure | None:
+        """The newest gas with a pH at or before a moment that was not drawn off support."""
+        i = bisect_right(self._gas_moments, at)
+        return next((g for g in reversed(self.gases[:i]) if g.ph is not None and not g.off_support), None)
 
     def gases_before(self, gas: GasFigure, within: Instant) -> tuple[GasFigure, ...]:
         """The arterial or capillary gases before one, at most `within` microseconds older."""

@@ -8,6 +8,7 @@ from math import isnan
 import numpy as np
 
 from core.judgement.markers import evidence as say
+from core.judgement.markers.gas_points import from_gases
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
 from core.judgement.markers.spells import Point, Spell, from_points, from_runs
@@ -27,7 +28,7 @@ def _pao2_points(seen: Observed, rule: MarkerRule, highest: bool | None) -> Iter
     for gas in _arterial(seen):
         if gas.pao2_mmHg is None:
             continue
-        low = say.is_below(gas.pao2_mmHg, limit)
+        low: bool | None = say.is_below(gas.pao2_mmHg, limit)
         if not low:
             yield Point(gas.at, False)
             continue
@@ -35,7 +36,7 @@ def _pao2_points(seen: Observed, rule: MarkerRule, highest: bool | None) -> Iter
         told.append(say.unknown("fio2") if gas.fio2 is None else say.on_oxygen(gas.fio2, gas.at))
         if highest:
             fio2, flow = rule.limits["fio2"], rule.limits["o2_flow"]
-            low = low and seen.on_highest_oxygen(gas, fio2, flow) is True
+            low = seen.on_highest_oxygen(gas, fio2, flow)  # not known: it says nothing either way
             if gas.fio2 is not None:
                 told[-1] = say.value_is("fio2", gas.fio2, say.AT_LEAST, fio2, gas.at)
         yield Point(gas.at, low, (*told, *say.gas_doubts(gas)))
@@ -43,17 +44,17 @@ def _pao2_points(seen: Observed, rule: MarkerRule, highest: bool | None) -> Iter
 
 def pao2_below_60(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """PaO2 below 60 mmHg (8.0 kPa) on any arterial gas."""
-    return from_points(_pao2_points(seen, rule, None))
+    return from_gases(seen, _pao2_points(seen, rule, None))
 
 
 def pao2_below_45(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """PaO2 below 45 mmHg (6.0 kPa) on any arterial gas."""
-    return from_points(_pao2_points(seen, rule, None))
+    return from_gases(seen, _pao2_points(seen, rule, None))
 
 
 def pao2_below_45_on_highest_oxygen(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """PaO2 below 45 mmHg (6.0 kPa) on the highest oxygen."""
-    return from_points(_pao2_points(seen, rule, True))
+    return from_gases(seen, _pao2_points(seen, rule, True))
 
 
 def pf_low_at_1h(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -79,7 +80,7 @@ def pf_low_at_1h(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             points.append(Point(gas.at, met, told))
         elif nearest is not None:
             points.append(Point(gas.at, None if gas.pf_mmHg <= limit else False))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def pf_below_150_ards(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -90,7 +91,7 @@ def pf_below_150_ards(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             met = gas.pf_mmHg < rule.limits["pf"] and inside(seen, rule.population, gas.at)
             told = say.value_is("pf", gas.pf_mmHg, say.BELOW, rule.limits["pf"], gas.at)
             points.append(Point(gas.at, met, (told, *say.gas_doubts(gas))))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def steady_fio2(seen: Observed, times: Times) -> Flags:
@@ -154,8 +155,10 @@ def fio2_need_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 def _rise(seen: Observed, at: Instant, span: Instant, rise: float) -> Point | None:
     steps = seen.settings.fio2
     now = steps.at(at)
-    if isnan(now) or not seen.support.on_support(at):
+    if not seen.support.on_support(at):
         return None
+    if isnan(now):
+        return Point(at, None)  # a flow without FiO2: whether the need has risen is not known
     i, j = np.searchsorted(steps.t, [at - span, at], side="right")
     first = max(int(i) - 1, 0)
     window = steps.v[first:j]

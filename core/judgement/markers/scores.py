@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable, Iterator
 
 from core.judgement.markers import evidence as say
+from core.judgement.markers.gas_points import from_gases
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
-from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.markers.spells import Point, Spell
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.score_findings import hacor_updated_at
 from core.judgement.scores import failure_percent
@@ -32,6 +33,14 @@ def _hacor(seen: Observed) -> Iterator[tuple[GasFigure, ScoreFigure, list[float]
 def hacor_limit_passed(score: ScoreFigure, limit: float) -> bool:
     """The lowest possible points are over the limit: what is missing can only add."""
     return score.lowest is not None and score.lowest > limit
+
+
+def _answers(score: ScoreFigure, limit: float) -> bool:
+    """Whether a score tells if its limit is passed, and in whom: a range that holds the limit does not, nor one of a
+    gas without the P/F, pH or PaCO2 that its population asks for. Surely at or below the limit always does."""
+    if score.highest is None or score.highest <= limit:
+        return True
+    return "population" not in score.reasons and (score.population == "outside" or hacor_limit_passed(score, limit))
 
 
 def hacor_above_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -60,13 +69,13 @@ def hacor_updated_above_10_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell
     for gas, _, minutes in _hacor(seen):
         score = hacor_updated_at(seen.ctx, gas)
         over = hacor_limit_passed(score, limit)
-        if over and not any(low <= m <= high for m in minutes):
+        if (over and not any(low <= m <= high for m in minutes)) or not _answers(score, limit):
             points.append(Point(gas.at, None))
             continue
         fits = score.population == "inside" and inside(seen, rule.population, gas.at)
         told = (_score_told("hacor_updated", score, limit, gas.at), *say.gas_doubts(gas)) if over else ()
         points.append(Point(gas.at, over and (fits or rule.outside == "remark"), told, not fits))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def _score_spells(seen: Observed, rule: MarkerRule, timely: Callable[[list[float]], bool]) -> list[Spell]:
@@ -76,12 +85,12 @@ def _score_spells(seen: Observed, rule: MarkerRule, timely: Callable[[list[float
         fits = score.population == "inside" and inside(seen, rule.population, gas.at)
         outside = score.population == "outside" or not fits
         over = hacor_limit_passed(score, limit)
-        if over and not timely(minutes):
+        if (over and not timely(minutes)) or not _answers(score, limit):
             points.append(Point(gas.at, None))
             continue
         shown = over and (fits or rule.outside == "remark")
         points.append(Point(gas.at, shown, _told(gas, score, limit) if shown else (), outside))
-    return from_points(points)
+    return from_gases(seen, points)
 
 
 def _told(gas: GasFigure, score: ScoreFigure, limit: float) -> tuple[Message, ...]:

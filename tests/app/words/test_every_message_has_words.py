@@ -86,7 +86,8 @@ DYNAMIC = {
     "gas_class.": [d.name.lower() for d in Disturbance],
     "specimen.": [f"{s}_is_not_arterial" for s in SITES],
     "response.": ["serves_as_baseline", "before_baseline", "baseline_early", "early", "capillary",
-                  "venous_only", "off_support", "unconfirmed", "inconsistent", "corrected", "disputed"],
+                  "venous_only", "off_support", "unconfirmed", "unusual", "implausible", "inconsistent",
+                  "corrected", "disputed"],
     "effect.": ["fio2", "o2_flow", "ti", "interface", "mode"],
 }  # fmt: skip
 """Keys made at run time: what stands before the brace, and every end it can get."""

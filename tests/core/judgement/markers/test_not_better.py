@@ -8,6 +8,7 @@ Ozyilmaz, BMC Pulm Med 2014;14:19. What counts as settling is common practice, n
 import pytest
 
 from tests.support.flag_cases import BEFORE, COPD, LUNG, START, flags, met, told
+from tests.support.log_cases import at
 
 KINDS = ("ph_not_better_severe", "ph_not_better", "ph_not_better_settling")
 BASE = COPD + BEFORE + START
@@ -194,3 +195,45 @@ def test_tiers_follow_the_rules():
     tiers = {f.marker: f.tier for f in flags(BASE + "02:00 ph 7.24 paco2 76")}
     assert tiers["ph_not_better_severe"] == "escalate"
     assert tiers["ph_below_severe"] == "concern"
+
+
+def test_a_later_gas_that_is_better_than_the_start_answers_not_better():
+    """Better in steps, each inside the noise of its own change, is better in all (rules 1.5, 3.9)."""
+    log = COPD + "00:30 ph 7.26 paco2 75\n" + START
+    log += "02:00 ph 7.27 paco2 74\n02:10 ipap 22\n03:30 ph 7.30 paco2 68\n"
+    assert met("ph_not_better", log) == "02:00-"  # nothing by the change, +0.04 since the start
+    later = log + "05:30 ph {} paco2 64\n"
+    assert met("ph_not_better", later.format("7.31")) == "02:00-05:30"
+    assert met("ph_not_better", later.format("7.29")) == "02:00-"  # falling back answers nothing
+
+
+def test_a_drift_down_from_what_was_gained_stays_not_better():
+    log = COPD + "00:30 ph 7.18 paco2 80\n" + START
+    log += "01:40 ph 7.30 paco2 66\n02:10 ipap 22\n03:30 ph 7.28 paco2 68\n"
+    assert met("ph_not_better", log + "05:30 ph 7.26 paco2 70\n") == "03:30-"
+
+
+def test_severe_is_not_over_by_what_was_gained_since_the_start():
+    log = COPD + "00:30 ph 7.10 paco2 99\n" + START
+    log += "01:40 ph 7.20 paco2 90\n02:10 ipap 22\n03:30 ph 7.20 paco2 88\n"
+    assert met("ph_not_better_severe", log + "05:50 ph 7.22 paco2 86\n") == "03:30-"
+
+
+def test_an_open_flag_names_the_newest_gas_though_it_does_not_settle_it():
+    log = COPD + "00:30 ph 7.26 paco2 75\n" + START + "02:00 ph 7.27 paco2 74\n"
+    flag = next(f for f in flags(log + "05:30 ph 7.28 paco2 64") if f.marker == "ph_not_better")
+    said = {m.key: m.values for m in flag.evidence}["evidence.not_settled"]
+    assert (said["gas_at"], said["ph"], said["because"]) == (at("05:30"), 7.28, "no answer")
+
+
+def test_an_alkalosis_is_no_gain_and_a_normal_ph_no_loss():
+    """Down from pH 7.49 to 7.40 with a normal PaCO2 nothing is lost; with acidosis or PaCO2 above 45 it is."""
+    log = LUNG + "00:30 ph 7.44 paco2 38\n" + START + "02:00 ph 7.49 paco2 32\n05:00 {}\n"
+    assert met("gain_lost", log.format("ph 7.40 paco2 38")) == ""
+    assert met("gain_lost", log.format("ph 7.36 paco2 44")) == ""
+    assert met("gain_lost", log.format("ph 7.36 paco2 52")) == "05:00-"
+    assert met("gain_lost", log.format("ph 7.33 paco2 44")) == "05:00-"
+    assert met("gain_lost", log.format("ph 7.38")) == ""  # its PaCO2 is not known: it says neither
+    assert (
+        met("paco2_rising", log.format("ph 7.40 paco2 38 rr 30") + "02:00 rr 30\n") == "05:00-"
+    )  # by its own reason
