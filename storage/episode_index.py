@@ -5,14 +5,16 @@ from __future__ import annotations
 import sqlalchemy as sa
 
 from core.record.entries import Action
+from core.record.episode import build_episode
 from core.record.knowledge import standing
+from core.record.settings import SettingsInForce
+from core.record.support import BEARS_ON_THE_END, ENDING, support_time
 from storage import schema as s
 from storage.changes import branches
 from storage.draft_batch import DraftBatch, Receipt
-from storage.reading_ledger import channel_entries, episode_entries
+from storage.reading_ledger import episode_entries
 
 _now = s.episode_now.c
-ENDS = "ended_at"
 
 
 def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -> None:
@@ -31,13 +33,18 @@ def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -
 
 
 def _touched_ends(connection: sa.Connection, draft: DraftBatch) -> set[str]:
-    touched = {d.entry.episode for d in draft.entries if d.entry.channel == ENDS}
-    moved = [d.entry.replaces for d in draft.entries if d.entry.channel == ENDS and d.entry.action is Action.MOVE]
+    """Episodes that this batch may have ended or brought back."""
+    bearing = [d.entry for d in draft.entries if d.entry.channel in BEARS_ON_THE_END]
+    touched = {e.episode for e in bearing if e.channel in ENDING or e.replaces}
+    moved = [e.replaces for e in bearing if e.action is Action.MOVE]
     if moved:
         query = sa.select(s.entry.c.moved_from).where(s.entry.c.replaces.in_(moved))
         touched |= {row[0] for row in connection.execute(query) if row[0]}
-    replaced = {d.entry.replaces for d in draft.entries if d.entry.channel == ENDS and d.entry.replaces}
-    touched |= {episode for episode, _ in branches(connection, replaced)}
+    touched |= {episode for episode, _ in branches(connection, {e.replaces for e in bearing if e.replaces})}
+    gone_on = {e.episode for e in bearing} - touched
+    if gone_on:
+        query = sa.select(_now.episode_id).where(_now.episode_id.in_(sorted(gone_on)), _now.ended_at.is_not(None))
+        touched |= {row[0] for row in connection.execute(query)}
     return touched
 
 
@@ -56,10 +63,12 @@ def _note(connection: sa.Connection, episode: str, last_at: int, receipt: Receip
 
 
 def ended_at(connection: sa.Connection, episode: str, head: int) -> int | None:
-    """When an episode ended by what stands, or None while it is open."""
-    entries = episode_entries(connection, episode, head)
-    ends = [x.entry.number for x in standing(entries) if x.entry.channel == ENDS and x.entry.episode == episode]
-    return int(ends[-1]) if ends and ends[-1] is not None else None
+    """When support ended by what stands, as the figures read it, or None while it goes on."""
+    found = standing(episode_entries(connection, episode, head))
+    if not any(x.entry.channel in ENDING and x.entry.episode == episode for x in found):
+        return None
+    record = build_episode(episode, found)
+    return support_time(record, SettingsInForce(record)).end
 
 
 def episode_keys(connection: sa.Connection, head: int) -> tuple[str, ...]:
@@ -69,7 +78,7 @@ def episode_keys(connection: sa.Connection, head: int) -> tuple[str, ...]:
 
 
 def open_episode_keys(connection: sa.Connection) -> tuple[str, ...]:
-    """Every episode with no end recorded, in order of first recording."""
+    """Every episode whose support has not ended, in order of first recording."""
     query = sa.select(_now.episode_id).where(_now.ended_at.is_(None))
     return tuple(row[0] for row in connection.execute(query.order_by(_now.first_seq, _now.episode_id)))
 
@@ -108,9 +117,10 @@ def rebuilt(connection: sa.Connection) -> list[dict[str, object]]:
             row = found.setdefault(episode, {"episode_id": episode, "first_seq": first, "last_seq": last,
                                              "last_at": last_at, "ended_at": None})  # fmt: skip
             row.update(_widest(row, first, last, last_at))
-    for x in standing(channel_entries(connection, ENDS)):  # a chain of replacements keeps its channel
-        number = x.entry.number
-        found[x.entry.episode]["ended_at"] = None if number is None else int(number)
+    may_have = sa.select(e.episode_id).distinct().where(e.channel.in_(sorted(ENDING)))
+    head = max((int(str(row["last_seq"])) for row in found.values()), default=0)  # an entry may have moved away since
+    for (episode,) in connection.execute(may_have).all():
+        found[episode]["ended_at"] = ended_at(connection, episode, head)
     return [found[key] for key in sorted(found)]
 
 

@@ -76,11 +76,6 @@ def texts_of(connection: sa.Connection, channel: str) -> tuple[tuple[str, str], 
     return tuple((e.episode, e.words) for e in sorted(found, key=lambda e: e.seq) if e.words)
 
 
-def channel_entries(connection: sa.Connection, channel: str) -> list[Entry]:
-    """Every entry of a channel in all episodes, in order of sequence. It reads the whole table: for checks alone."""
-    return [_entry(row) for row in connection.execute(_SELECT_ENTRIES.where(_e.channel == channel).order_by(_e.seq))]
-
-
 def _add_chains(
     connection: sa.Connection, found: dict[str, Entry], fresh: list[Entry], missing: set[str], head: int
 ) -> None:

@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
+from app.operations.bed_in_use import label_questions
 from app.operations.policy import in_force
 from core.judgement.entry_doubts import gas_doubts
 from core.judgement.order_doubts import order_doubts
@@ -34,6 +35,7 @@ def questions(store: Store, record: Episode, at: Instant, readings: Sequence[Rea
         sample = next((g for g in record.gases if g.at == at), None)
         asked += gas_doubts(readings, drawn_on, in_force(store), sample)
     asked += order_doubts(readings, at, record)
+    asked += label_questions(store, record.key, readings)
     return tuple(asked)
 
 

@@ -9,6 +9,7 @@ from difflib import get_close_matches
 from typing import TYPE_CHECKING
 
 from app.operations import policy
+from app.operations.bed_in_use import label_questions
 from app.operations.entry_questions import check_target
 from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome
@@ -110,6 +111,8 @@ def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -
     _check_free(store, key)
     read = _read(request, key, now)
     asked = [doubt for _, readings in read for r in readings for doubt in r.doubts]
+    for _, readings in read:
+        asked += label_questions(store, key, readings)
     for _, readings in read[1:]:
         asked += gas_doubts(readings, NO_SETTINGS, policy.in_force(store))
     return Outcome(Beginning(key, read, tuple(asked)), store.head())

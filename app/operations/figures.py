@@ -90,8 +90,10 @@ def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outco
     for number, key in enumerate(keys):
         report(number, len(keys))
         record = load(store, key, request.as_known_at)
-        if _stands(record, request):
-            made = episode_figures(record, request.as_of, policy, stages)
+        if not _has_begun(record, request):
+            continue
+        made = episode_figures(record, request.as_of, policy, stages)
+        if _stands(made, request):
             answers.append(EpisodeAnswer(record, made))
     answers.sort(key=lambda a: concern_order(a.figures))
     return Outcome(WardAnswer(request.as_of, tuple(answers), policy), head)
@@ -120,14 +122,16 @@ def _keys(store: Store, request: WardRequest) -> Sequence[str]:
     return store.standing_keys(request.as_of - RECENTLY_ENDED, head)
 
 
-def _stands(record: Episode, request: WardRequest) -> bool:
-    """Whether an episode had begun by the moment and had not ended long before it."""
-    if request.episodes is not None:
-        return bool(record.standing)  # an episode that nothing was known of yet does not stand on the ward
-    if not record.standing:
-        return False  # begun, and taken back
+def _has_begun(record: Episode, request: WardRequest) -> bool:
+    """Whether anything stood of an episode by the moment; one begun and taken back, or not yet known, has not."""
+    if request.episodes is not None or not record.standing:
+        return bool(record.standing)
     first = record.standing[0].entry.at if record.first_at is None else record.first_at
-    if first > request.as_of:
-        return False
-    ended = record.latest("ended_at")
-    return request.everything or ended is None or ended > request.as_of - RECENTLY_ENDED
+    return first <= request.as_of
+
+
+def _stands(figures: EpisodeFigures, request: WardRequest) -> bool:
+    """Whether its support had not ended long before the moment."""
+    ended = figures.support.ended_at
+    named = request.everything or request.episodes is not None
+    return named or ended is None or ended > request.as_of - RECENTLY_ENDED

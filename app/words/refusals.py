@@ -24,6 +24,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "doubt.gas_with_new_fio2":
         "The FiO2 changes in the minute of the gas: the gas counts as drawn before, on {fio2:fraction}. If not, log "
         "its own: gas fio2.",
+    "doubt.label_in_use":
+        "{label} is in use: episode {episode}[[, since {since:time}]], has not ended. Two patients, or the same one?",
     "doubt.mask_off_already":
         "The mask is off already, since {since:time}. Was it on in between?",
     "doubt.mask_on_already":

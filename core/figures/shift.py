@@ -18,7 +18,7 @@ from core.record.channels import CHANNELS, Group
 from core.record.episode import Episode, Words
 from core.record.instant import HOUR, Instant
 from core.record.settings import SettingsInForce
-from core.record.support import Break
+from core.record.support import Break, support_time
 
 DUE_AHEAD: Final = 4 * HOUR
 """Due items of this long after the shift's end are handed over."""
@@ -90,8 +90,12 @@ class WardShift:
 
 def stands_in_shift(episode: Episode, start: Instant, end: Instant) -> bool:
     """Whether an episode was on the ward in a shift: begun by its end, not ended before its start."""
-    first, ended = episode.first_at, episode.latest("ended_at")
-    return first is not None and first <= end and (ended is None or ended > start)
+    first = episode.first_at
+    if first is None or first > end:
+        return False
+    known = episode.until(end)
+    ended = support_time(known, SettingsInForce(known)).end
+    return ended is None or ended > start
 
 
 def ward_shift(episodes: Iterable[Episode], start: Instant, end: Instant, policy: Policy) -> WardShift:

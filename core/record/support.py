@@ -13,6 +13,10 @@ SUPPORT_MODES = frozenset(MODES) - {"off"}
 SETTLED = 10 * MINUTE
 """Entries closer together than this say nothing about their order: they were written in one go."""
 _ENDING_EVENTS = ("stopped", "intubated", "arrest")
+ENDING = frozenset({"ended_at", *_ENDING_EVENTS})
+"""Channels by which support ends."""
+BEARS_ON_THE_END = ENDING | {"mask_on"} | {c.key for c in by_group(Group.SETTING)}
+"""Channels that decide whether it has: settings or the mask after a stop say that it goes on."""
 
 
 @dataclass(frozen=True, slots=True)

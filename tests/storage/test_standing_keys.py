@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import tempfile
+from dataclasses import replace
 from pathlib import Path
 
 from hypothesis import given, settings
@@ -10,6 +11,8 @@ from hypothesis import strategies as st
 
 from core.record.entries import Action, NewEntry
 from core.record.instant import HOUR
+from core.record.settings import SettingsInForce
+from core.record.support import support_time
 from storage import episode_index
 from storage.store import Store
 from tests.storage.conftest import NOW
@@ -78,6 +81,55 @@ def test_none_that_stood_is_missing_at_any_moment_of_knowledge(steps: list[tuple
 def _stands(store: Store, key: str, head: int, since: int) -> bool:
     found = store.episode(key, head).latest(ENDS)
     return found is None or found > since
+
+
+def said(episode: str, channel: str, at: int, words: str = "", **more: object) -> NewEntry:
+    return NewEntry(episode, channel, at, words=words or "yes", **more)  # type: ignore[arg-type]
+
+
+def test_a_stop_ends_an_episode_until_the_mask_goes_on_again(store: Store) -> None:
+    begin(store, "E1")
+    log(store, said("E1", "mode", NOW, "BPAP-ST"))
+    assert store.open_episode_keys() == ("E1",)
+    log(store, said("E1", "stopped", NOW + HOUR))
+    assert store.open_episode_keys() == ()
+    assert store.standing_keys(NOW) == ("E1",)
+    assert store.standing_keys(NOW + HOUR) == ()
+    (again,) = log(store, said("E1", "mask_on", NOW + 30 * HOUR))
+    assert store.open_episode_keys() == ("E1",)
+    log(store, said("E1", "mask_on", NOW + 30 * HOUR, action=Action.WITHDRAW, replaces=again, reason="not hers"))
+    assert store.open_episode_keys() == ()
+    assert not store.verify()
+
+
+STEPS = st.tuples(st.sampled_from(["stopped", "mask_on", "mode", "ended_at", "rr"]), st.integers(0, 9),
+                  st.integers(0, 1), st.sampled_from(["assert", "withdraw", "move"]))  # fmt: skip
+
+
+@given(st.lists(STEPS, max_size=8))
+@settings(max_examples=15, deadline=None)
+def test_the_table_tells_the_end_that_the_figures_read(steps: list[tuple[str, int, int, str]]) -> None:
+    with tempfile.TemporaryDirectory() as folder, Store.create(Path(folder) / "a.luff", now=NOW) as store:
+        begin(store, "E0", "E1")
+        last: NewEntry | None = None
+        last_id = ""
+        for channel, hour, number, action in steps:
+            if action == "assert" or last is None:
+                at = NOW + hour * HOUR
+                value = float(at) if channel == ENDS else 20.0 if channel == "rr" else None
+                words = None if value is not None else "BPAP-ST" if channel == "mode" else "yes"
+                last = NewEntry(f"E{number}", channel, at, value, words)
+                (last_id,) = log(store, last)
+            else:
+                what = Action.WITHDRAW if action == "withdraw" else Action.MOVE
+                key = last.episode if what is Action.WITHDRAW else "E1" if last.episode == "E0" else "E0"
+                log(store, replace(last, episode=key, action=what, replaces=last_id, reason="x"))
+                last = None
+        for key in ("E0", "E1"):
+            record = store.episode(key)
+            end = support_time(record, SettingsInForce(record)).end
+            assert (key in store.open_episode_keys()) == (end is None)
+        assert not [m for m in store.verify() if m.key == "verify.derived"]
 
 
 def test_it_is_asked_by_index(store: Store) -> None:

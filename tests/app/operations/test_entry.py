@@ -131,6 +131,18 @@ def test_a_target_the_wrong_way_round_is_refused_however_it_is_entered(store: St
     assert log(store, "target spo2 high 92").entries[0].number == 92
 
 
+def test_a_bed_of_another_patient_is_asked_about_however_it_is_given(store: Store) -> None:
+    request = episode.BeginRequest("C", {"label": " bed  a"})
+    (asked,) = episode.preview_begin(store, "AB", NOW, request).value.questions
+    assert sentence(asked).startswith("Bed A is in use: episode A")
+    (asked,) = facts.preview(store, "AB", NOW, facts.FactsRequest("B", NOW, {"label": "Bed A"}, "UTC")).value.questions
+    assert (asked.key, asked.values["episode"]) == ("doubt.label_in_use", "A")
+    own = facts.preview(store, "AB", NOW, facts.FactsRequest("A", NOW, {"label": "Bed A"}, "UTC")).value
+    assert not own.questions
+    log(store, "stopped end_reason weaned")
+    assert not episode.preview_begin(store, "AB", NOW, request).value.questions
+
+
 def test_a_moment_to_come_is_refused(store: Store) -> None:
     with pytest.raises(RecordError) as refused:
         entry.check_not_future(NOW + 6 * MINUTE, NOW)
