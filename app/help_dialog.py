@@ -82,8 +82,8 @@ class HelpDialog(FittedDialog):
             ]
             parts.append("</table>")
         chart = self.tr(
-            "On the panels: arrows move, + and - zoom, Home start, End now, 0 all; Ctrl with an arrow moves the crosshair, "
-            "Enter opens the verdict or event under it, Esc takes it away and leads back to the ward. "
+            "On the panels: arrows move, + and - zoom, Home start, End now, 0 all; Ctrl with an arrow moves "
+            "the crosshair, Enter opens the verdict or event under it, Esc takes it away and leads back to the ward. "
             "On the ward: up and down choose a patient, left and right an item, Enter opens."
         )
         parts.append(f"<p>{escape(chart)}</p>")
