@@ -30,7 +30,7 @@ def bed(label: str) -> EpisodeFigures:
         ("Bed 5", "gain lost, still better", Verdict.MIXED),
         ("Bed 4", "no clear change, worse since start", Verdict.WORSE),
         ("Bed 2", "no clear change, better since start", Verdict.NO_CLEAR_CHANGE),
-        ("Bay A 1", "worse, gain lost", Verdict.WORSE),
+        ("Bay A 1", "worse", Verdict.WORSE),  # pH 7.49 to 7.40: an alkalosis was no gain
         ("Bed 3", "better", Verdict.BETTER),
     ],
 )
@@ -109,3 +109,13 @@ def test_the_mask_off_and_when() -> None:
     assert off_mask_word(f, "UTC") == "mask off since 05:31"
     assert off_mask_word(replace(f, support=SupportFigure(ended_at=at)), "UTC") == ""
     assert off_mask_word(replace(f, now=NowFigure()), "UTC") == ""
+
+
+def test_a_doubtful_value_is_said_beside_its_verdict() -> None:
+    judged = JudgedGas(5, 60.0, "in_window", verdict="better")
+    told = ResponseFigure(1, "start", 1, headline="better", headline_gas_at=5, gases=(judged,), in_doubt=True)
+    found = headline(EpisodeFigures("E", 9, responses=(told,)))
+    assert found is not None
+    assert found.short == "better (doubtful value)"
+    line = FigureLines(Reader(zone="UTC")).headline(told, judged)
+    assert line == "better (doubtful value)"
