@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from app import formats
 from app.figure_rows import FigureRow, RowInput, RowMaker
 from app.figure_values import slope_band, slope_text, span_text
+from app.presumed import presumed_word
 from core.judgement.shapes import EpisodeFigures, LeakFigure
 from core.record.instant import MINUTE, Instant
 
@@ -21,6 +22,10 @@ def mask_rows(f: EpisodeFigures, make: RowMaker) -> Iterator[FigureRow]:
         given.append(RowInput(make.tr("Off the mask since"), "", s.break_since))
     unlogged = make.tr("Doubtful: a break that nobody logged may count as on the mask")
     doubt = unlogged if f.leak.probable_breaks else ""
+    presumed = {
+        "hours_on_mask": presumed_word(s, make.reader.zone),
+        "hours_on_mask_last_24h": presumed_word(s, make.reader.zone, last_day=True),
+    }
     at = s.ended_at if s.ended_at is not None else f.as_of
     rows = (
         ("hours_on_mask", make.tr("Hours on the mask"), s.hours_on_mask),
@@ -29,7 +34,8 @@ def mask_rows(f: EpisodeFigures, make: RowMaker) -> Iterator[FigureRow]:
     for key, name, hours in rows:
         value = "" if hours is None else formats.hours(hours)
         why = "" if value else make.say(s.reasons.get(key)) or make.tr("Not known")
-        yield FigureRow(key, name, value, at if value else None, doubt if value else "", (), why, tuple(given))
+        told = ". ".join(part for part in (presumed[key], doubt) if part)
+        yield FigureRow(key, name, value, at if value else None, told if value else "", (), why, tuple(given))
 
 
 def leak_rows(f: EpisodeFigures, make: RowMaker) -> Iterator[FigureRow]:

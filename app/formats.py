@@ -96,14 +96,21 @@ def span(start: Instant, end: Instant, zone: str) -> str:
     return in_language("{start} to {end}").format(start=wall(start, zone), end=until)
 
 
-def minutes(count: float) -> str:
-    """A length of time: 45 min, 2 h, 2 h 05 min.
+LONG_H = 96
+"""Longer spans are said in days: nobody reads 5968 h."""
 
-    >>> minutes(45), minutes(120), minutes(125.4)
-    ('45 min', '2 h', '2 h 05 min')
+
+def minutes(count: float) -> str:
+    """A length of time: 45 min, 2 h, 2 h 05 min; beyond four days in days.
+
+    >>> minutes(45), minutes(120), minutes(125.4), minutes(5968 * 60)
+    ('45 min', '2 h', '2 h 05 min', '248 days 16 h')
     """
     whole = int(rounded(abs(count), 0))
     hours, rest = divmod(whole, 60)
+    if hours > LONG_H:
+        days, hours = divmod(hours, 24)
+        return f"{days} days {hours} h" if hours else f"{days} days"
     if not hours:
         return f"{rest} min"
     return f"{hours} h {rest:02d} min" if rest else f"{hours} h"
@@ -167,7 +174,9 @@ def quantity(channel: str, value: float | str | None, gas_unit: str = "mmHg") ->
     if channel == "told" and isinstance(value, str):
         return told_words(value)
     if isinstance(value, str) or known is None or known.kind is not Kind.NUMBER:
-        return _CHOICES.get(value, value) if isinstance(value, str) else trimmed(value)
+        if not isinstance(value, str):
+            return trimmed(value)
+        return choice_word(value) if known is not None and known.kind is Kind.CHOICE else _CHOICES.get(value, value)
     if known.unit == "fraction":
         return fraction(value)
     if channel in ("paco2", "pao2", "usual_paco2"):

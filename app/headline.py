@@ -27,13 +27,15 @@ class Headline:
     since_start: Verdict | None = None
     lost_later: bool = False
     """Whether a newer gas than the verdict's lost the gain: then nothing says that it is still better."""
+    doubtful: bool = False
+    """Whether its gas, or what it is compared with, holds a doubtful value: it is never said without that."""
 
     @property
     def word(self) -> str:
-        """The verdict, and whether a gain was lost, which comes first: gain lost, still better."""
-        if self.gain_lost and self.lost_later and self.verdict is Verdict.BETTER:
-            return translate("headline", LOST_SINCE)
-        return verdict_with_loss(self.verdict, lost=self.gain_lost)
+        """The verdict, whether a gain was lost, which comes first, and a doubt: gain lost, still better."""
+        later = self.gain_lost and self.lost_later and self.verdict is Verdict.BETTER
+        said = translate("headline", LOST_SINCE) if later else verdict_with_loss(self.verdict, lost=self.gain_lost)
+        return in_doubt(said) if self.doubtful else said
 
     @property
     def short(self) -> str:
@@ -59,7 +61,7 @@ def headline(f: EpisodeFigures) -> Headline | None:
     later = f.now.since_start_gain_lost and not lost
     against = f.now.since_start or (judged.since_start.verdict if judged is not None else None)
     since = verdict_of(against) if against is not None else None
-    return Headline(verdict_of(told.headline), lost or later, since, later)
+    return Headline(verdict_of(told.headline), lost or later, since, later, told.in_doubt)
 
 
 def verdict_sentences(f: EpisodeFigures) -> tuple[str, ...]:
@@ -90,6 +92,11 @@ def lost_gain(response: ResponseFigure) -> bool:
     """Whether the gas of the headline, or a later one, had lost what was gained."""
     judged = judged_by(response)
     return response.gain_lost or (judged is not None and judged.since_start.gain_lost)
+
+
+def in_doubt(verdict: str) -> str:
+    """A verdict in words that rests on a doubtful value."""
+    return translate("headline", "{verdict} (doubtful value)").format(verdict=verdict)
 
 
 def verdict_with_loss(verdict: Verdict, *, lost: bool) -> str:

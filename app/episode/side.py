@@ -33,6 +33,7 @@ from app.headline import (
 )
 from app.lever_words import lever_reasons, lever_sentence, lever_standing
 from app.phrases import gas_words, state_of, support_now, translate
+from app.presumed import presumed_word
 from app.signs import Sign
 from app.theme import Theme, Tier, Verdict, tier_word, verdict_word
 from app.ward.lane_words import anchor_name, open_flags
@@ -252,6 +253,8 @@ class _Facts:
             if s.hours_on_mask_last_24h is not None and s.hours_on_mask > s.hours_on_mask_last_24h + 0.05:
                 text += translate("side", ", {hours} in the last 24 h").format(hours=hours(s.hours_on_mask_last_24h))
             yield text
+        if presumed := presumed_word(s, self.reader.zone):
+            yield presumed
 
     # flags
 

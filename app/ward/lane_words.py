@@ -34,6 +34,7 @@ from app.phrases import (
     support_now,
     verdict_or_none,
 )
+from app.presumed import silent_word
 from app.theme import Tier, Verdict, tier_word
 from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
@@ -117,6 +118,8 @@ class LaneWords:
             told = f"{told}, {f.episode}"
         if off_mask_word(f, self.zone):
             return translate("ward", "{indication}, mask off").format(indication=told)
+        if silent := silent_word(s, self.zone):
+            return f"{told}, {silent}"
         if moved:
             return f"{told}, {moved}"
         return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
@@ -165,6 +168,7 @@ class LaneWords:
             parts.append(
                 f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_now(f, gas, self.gas_unit)})"
             )
+        parts.append(silent_word(s, self.zone))
         parts += verdict_sentences(f)
         parts += flag_words(f)
         parts.append(self._end_word(f) if is_ended(f) else self._due_word(next_due(f)))
@@ -230,7 +234,7 @@ class LaneWords:
         if found is not None and verdict is not None:
             parts.append(self._verdict_sentence(verdict, found[0], found[1]))
         if gas.doubt:
-            parts.append(translate("ward", "doubtful: outside usual limits and not confirmed"))
+            parts.append(doubt_word(gas))
         if gas.corrected:
             parts.append(translate("ward", "corrected"))
         return LaneItem(
@@ -378,3 +382,12 @@ def _outside(start: Instant, end: Instant, course: Course) -> Iterator[tuple[Ins
             at = max(at, stop)
     if at < end:
         yield at, end
+
+
+def doubt_word(gas: GasFigure) -> str:
+    """What makes a gas doubtful, the worst first."""
+    if gas.implausible is not None:
+        return translate("ward", "doubtful: its values hardly belong together")
+    if gas.unconfirmed:
+        return translate("ward", "doubtful: a value that nobody confirmed")
+    return translate("ward", "doubtful: outside usual limits")

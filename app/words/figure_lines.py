@@ -6,6 +6,7 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 
 from app import formats
+from app.presumed import presumed_word
 from app.words import Reader, sentence
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
@@ -96,6 +97,8 @@ class FigureLines:
             text += f"; {formats.hours(s.hours_on_mask)} {self.tr('on the mask')}"
         if s.hours_on_mask_last_24h is not None:
             text += f" ({formats.hours(s.hours_on_mask_last_24h)} {self.tr('in the last 24 h')})"
+        if presumed := presumed_word(s, self.reader.zone):
+            text += f", {presumed}"
         if s.ended_at is not None:
             why = f", {s.end_reason}" if s.end_reason else ""
             text += f"; {self.tr('ended')} {self.reader.time(s.ended_at)}{why}"
@@ -211,6 +214,8 @@ class FigureLines:
         """The verdict with a gain that was lost, and the verdict since the start where it is another."""
         since = judged.since_start
         text = self.tr(with_loss(r.headline, lost=r.gain_lost or since.gain_lost))
+        if r.in_doubt:
+            text += f" ({self.tr('doubtful value')})"
         if since.verdict is not None and since.verdict != r.headline:
             text += f" ({self.tr('since the start')}: {self.tr(since.verdict)})"
         return text

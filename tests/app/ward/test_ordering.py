@@ -79,3 +79,16 @@ def test_nobody_is_seen_first_where_all_is_quiet():
 
 def test_natural_order_is_total_for_odd_labels():
     assert sorted(["", "Bed", "7", "Bed 7a", "Bed 07"], key=natural)
+
+
+def test_who_is_not_better_with_a_late_gas_stands_before_who_is_better_since_the_start():
+    """Of the sample night: Bay A 4, pH 7.26 and not better, before Bed 2, pH 7.33 and better since the start."""
+    order = labels(ordered(sample_ward(), Order.CONCERN))
+    assert order.index("Bay A 4") < order.index("Bed 2")
+
+
+def test_no_resolved_bed_without_a_concern_stands_above_an_acidotic_one():
+    running = [f for f in ordered(sample_ward(), Order.CONCERN) if f.support.ended_at is None]
+    quiet = [f for f in running if f.concern.rank >= 2]
+    sick = [f.now.state in ("severe", "acidotic") for f in quiet]
+    assert sick == sorted(sick, reverse=True)
