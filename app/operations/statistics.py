@@ -26,18 +26,19 @@ class StatisticsRequest:
 
 
 def of_ward(store: Store, who: str, now: Instant, request: StatisticsRequest) -> Outcome[WardStatistics]:
-    """The shift figures of a span. Its end is drawn back to now: nobody counts what is still to come.
+    """The shift figures of a span. Its end is drawn back to now, or to when it is known at: nobody counts what is to come.
 
     Raises:
         RecordError: `statistics.backwards`.
     """
-    end = min(request.end, now)
+    moments = (request.end, now, request.as_known_at)
+    end = min(at for at in moments if at is not None)
     if end <= request.start:
         raise refuse("statistics.backwards", start=request.start, end=end)
     known_head = None if request.as_known_at is None else store.head_known_at(request.as_known_at)
     policy = in_force(store, known_head)
     total = nothing(request.start, end, policy)
-    keys = store.episode_keys(known_head)
+    keys = store.standing_keys(request.start, known_head)  # in a store of years most had ended before
     for number, key in enumerate(keys):
         report(number, len(keys))
         total += episode_statistics(load(store, key, request.as_known_at), request.start, end, policy)
