@@ -26,8 +26,9 @@ class StatisticsRequest:
 
 
 def of_ward(store: Store, who: str, now: Instant, request: StatisticsRequest) -> Outcome[WardStatistics]:
-    """The shift figures of a span. Its end is drawn back to now, or to the moment it is known at: what is to come counts
-    nowhere.
+    """The shift figures of a span. Its end is drawn back to now, or to when it is known at.
+
+    Nobody counts what is to come.
 
     Raises:
         RecordError: `statistics.backwards`.
