@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from html import escape
 
 from app.formats import whole_units
+from app.language import in_language as tr
 from app.phrases import translate
 from app.sheet.gas_table import HEADINGS
 from app.sheet.shapes import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
@@ -19,7 +20,7 @@ def page_html(content: SheetContent, theme: Theme) -> str:
     for page in content.episodes:
         parts += writer.episode(page, content.gas_unit)
     parts.append(writer.quiet(f"{content.printed}. {content.head}."))
-    parts.append(writer.quiet(content.caution))
+    parts.append(writer.quiet(tr(content.caution)))
     return "".join(parts)
 
 
@@ -155,7 +156,7 @@ class _Writer:
             for g in page.gases
         )  # fmt: skip
         widths = (10, 5, 6, 6, 6, 6, 6, 6, 6, 7, 16, 20)
-        yield self.table(HEADINGS, ([_shown(cell) for cell in row] for row in rows), widths)
+        yield self.table(map(tr, HEADINGS), ([_shown(cell) for cell in row] for row in rows), widths)
 
     def flag(self, f: FlagLine) -> str:
         word = tier_word(Tier(f.tier)).upper()

@@ -96,7 +96,7 @@ def episode_blocks() -> list[Block]:
         WriteOn(tuple(tr(word) for word in FACTS), 2, 17),
         WriteOn((tr("What changed"),), 1, 17),
         Heading(tr("Settings now and changes this shift")), Grid(changes, 5, 17),
-        Heading(tr("Gases")), Grid(tuple(zip(GAS_HEADINGS, shares, strict=True)), 4, 17),
+        Heading(tr("Gases")), Grid(tuple(zip(map(tr, GAS_HEADINGS), shares, strict=True)), 4, 17),
         Heading(tr("Observations")), Grid([(name, 1.0) for name in observed], 5, 17),
         Heading(tr("Flags and what was done")), Grid(flags, 3, 17),
         WriteOn((tr("Levers noted"),), 1, 17),
@@ -118,7 +118,7 @@ def blank_bytes(paper: str = "A4", episodes: int = 1) -> tuple[bytes, int]:
     writer = QPdfWriter(buffer)
     writer.setResolution(DOTS_PER_INCH)
     writer.setTitle(tr("Handover, paper form"))
-    writer.setCreator(tr("Luffmark"))
+    writer.setCreator("Luffmark")
     set_paper(writer, paper)
     size = writer.pageLayout().fullRectPoints()
     painter = QPainter(writer)

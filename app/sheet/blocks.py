@@ -227,7 +227,7 @@ def draw_tier(press: Press, x: float, y: float, width: float, tier: str) -> None
         press.box(x, y + press.gap(0.6), width, high, fill=PALE, weight=1.1, round_by=press.gap(1.5))
     else:
         press.box(x, y + press.gap(0.6), width, high, weight=0.4, ink=LINE, round_by=press.gap(1.5))
-    press.text(x, y + press.gap(1.4), width, tier.upper(), style, Align.CENTRE)
+    press.text(x, y + press.gap(1.4), width, tr(tier).upper(), style, Align.CENTRE)
 
 
 @dataclass(frozen=True, slots=True)

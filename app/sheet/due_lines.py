@@ -45,9 +45,9 @@ def due_short(d: DueFigure, reader: Reader, as_of: int | None = None) -> str:
 
 def _when(d: DueFigure, reader: Reader, as_of: int | None) -> str:
     if d.state == "overdue" and as_of is not None:
-        return f"OVERDUE {formats.minutes((as_of - d.due_until) / MINUTE)}"
-    state = {"overdue": " OVERDUE", "awaiting result": " (sent, awaiting result)"}.get(d.state, "")
-    return f"by {reader.time(d.due_until)}{state}"
+        return f"{tr('OVERDUE')} {formats.minutes((as_of - d.due_until) / MINUTE)}"
+    state = {"overdue": f" {tr('OVERDUE')}", "awaiting result": tr(" (sent, awaiting result)")}.get(d.state, "")
+    return tr("by {time}{state}").format(time=reader.time(d.due_until), state=state)
 
 
 def skin_line(episodes: Iterable[ShiftFigures], reader: Reader) -> str:
@@ -56,7 +56,7 @@ def skin_line(episodes: Iterable[ShiftFigures], reader: Reader) -> str:
     found.sort(key=lambda x: (x[1].due_until, x[0]))
     late = [label for label, d in found if d.state == "overdue"]
     to_come = [f"{label} by {reader.time(d.due_until)}" for label, d in found if d.state != "overdue"]
-    return " ".join(_part(head, names) for head, names in (("overdue", late), (tr("to come"), to_come)) if names)
+    return " ".join(_part(head, names) for head, names in ((tr("overdue"), late), (tr("to come"), to_come)) if names)
 
 
 def _part(head: str, names: Sequence[str]) -> str:

@@ -55,7 +55,7 @@ class EpisodeWriter(SheetWriter):
             (tr("Jobs not done"), "jobs"),
         )
         for name, channel in rows:
-            yield name, str(f.profile.get(channel) or formats.ABSENT)
+            yield name, str(f.profile.get(channel) or tr(formats.ABSENT))
 
     def _levers(self, f: EpisodeFigures) -> Iterator[str]:
         """What could act: the reason, then what limits it."""
@@ -80,12 +80,13 @@ class EpisodeWriter(SheetWriter):
         p = s.now.profile
         yield tr("Why on support"), formats.quantity("indication", p.get("indication"))
         yield tr("SpO2 target"), self._target(s)
-        yield tr("Ceiling of care"), formats.quantity("ceiling_of_care", p.get("ceiling_of_care") or formats.ABSENT)
-        yield tr("Resuscitation"), str(p.get("resuscitation") or formats.ABSENT)
-        yield tr("Responsible"), str(p.get("contact") or formats.ABSENT)
+        ceiling = p.get("ceiling_of_care") or tr(formats.ABSENT)
+        yield tr("Ceiling of care"), formats.quantity("ceiling_of_care", ceiling)
+        yield tr("Resuscitation"), str(p.get("resuscitation") or tr(formats.ABSENT))
+        yield tr("Responsible"), str(p.get("contact") or tr(formats.ABSENT))
         usual = p.get("usual_paco2")
         yield tr("Usual PaCO2"), self._lines.pressure(usual if isinstance(usual, float) else None)
-        yield tr("Home support"), str(p.get("home_support") or formats.ABSENT)
+        yield tr("Home support"), str(p.get("home_support") or tr(formats.ABSENT))
         yield tr("Mask this shift"), self._mask_this_shift(s)
 
     def _support(self, s: ShiftFigures) -> Iterator[Fact]:
@@ -124,7 +125,7 @@ class EpisodeWriter(SheetWriter):
                 what += tr("; with it {steps}").format(steps=self._lines.steps(with_it))
             told = opened(self._lines.of(s.now).verdict(r))
             short = tr("support started") if r.anchor == "start" else what
-            brief = f"{self._moment(r.anchor_at)} {short}: {with_loss(r.headline, lost=r.gain_lost)}"
+            brief = f"{self._moment(r.anchor_at)} {short}: {tr(with_loss(r.headline, lost=r.gain_lost))}"
             line = ChangeLine(self._when(r.first_at, r.anchor_at), what, told, r.headline, brief)
             rows.append((r.first_at, line))
         for at, steps in beside.items():
@@ -138,7 +139,7 @@ class EpisodeWriter(SheetWriter):
         return self._moment(last) if first == last else f"{self._moment(first)} to {self._moment(last)}"
 
     def _interface(self, f: EpisodeFigures) -> str:
-        return tr(". Interface: {interface}").format(interface=f.support.interface or formats.ABSENT)
+        return tr(". Interface: {interface}").format(interface=f.support.interface or tr(formats.ABSENT))
 
     def _flag(self, x: FlagFigure) -> FlagLine:
         return FlagLine(x.tier, self._lines.flag_head(x), self._lines.evidence(x), self._lines.certainty(x),
@@ -162,17 +163,17 @@ class EpisodeWriter(SheetWriter):
     def _care(self, s: ShiftFigures) -> Iterator[Fact]:
         record = self._h.records[s.episode].until(s.end)
         p = s.now.profile
-        yield tr("Tolerance"), record.latest_text("comfort") or formats.ABSENT
+        yield tr("Tolerance"), record.latest_text("comfort") or tr(formats.ABSENT)
         yield tr("Secretions"), self._newest_event(s, "secretions")
         yield tr("Skin"), self._newest_event(s, "skin_check")
-        yield tr("Feeding"), str(p.get("feeding") or formats.ABSENT)
-        yield tr("Isolation"), str(p.get("isolation") or formats.ABSENT)
+        yield tr("Feeding"), str(p.get("feeding") or tr(formats.ABSENT))
+        yield tr("Isolation"), str(p.get("isolation") or tr(formats.ABSENT))
 
     def _newest_event(self, s: ShiftFigures, channel: str) -> str:
         found = [e for e in s.events if e.channel == channel]
         if not found:
             return tr("nothing recorded this shift")
-        return f"{self._clock(found[-1].at)} {found[-1].words or 'recorded'}"
+        return f"{self._clock(found[-1].at)} {found[-1].words or tr('recorded')}"
 
     def _to_check(self, s: ShiftFigures) -> Iterator[str]:
         if s.recorded_late and not self._h.imported:

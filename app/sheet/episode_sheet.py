@@ -131,7 +131,7 @@ def gas_table(gases: tuple[GasRow, ...]) -> Table:
     shares = (10, 5, 8, 8, 9, 7, 7, 8, 7, 8, 18, 33)
     right = range(2, 10)
     columns = [Column(h, s, Align.RIGHT if n in right else Align.LEFT)
-               for n, (h, s) in enumerate(zip(HEADINGS, shares, strict=True))]  # fmt: skip
+               for n, (h, s) in enumerate(zip(map(tr, HEADINGS), shares, strict=True))]  # fmt: skip
     rows = [
         (g.at, g.site, g.ph, g.delta_ph, g.paco2, g.delta_paco2, g.pao2, g.hco3, g.pf, g.fio2,
          g.state + (" (before)" if g.is_before else ""), g.verdict)

@@ -98,7 +98,7 @@ def _pressure_change(value: float | None, unit: str) -> str:
 
 def _verdict(j: JudgedGas | None, *, is_base: bool) -> str:
     if j is None:
-        return "baseline" if is_base else tr("not used for a verdict")
-    timing = {"early": ", early", "late": ", late"}.get(j.timing, "")
-    verdict = with_loss(j.verdict or tr("not judged"), lost=j.since_start.gain_lost)
+        return tr("baseline") if is_base else tr("not used for a verdict")
+    timing = {"early": tr(", early"), "late": tr(", late")}.get(j.timing, "")
+    verdict = tr(with_loss(j.verdict or "not judged", lost=j.since_start.gain_lost))
     return f"{verdict} ({formats.minutes(j.minutes)}{timing})"

@@ -51,7 +51,7 @@ def pdf_bytes(content: SheetContent, paper: str = "A4") -> tuple[bytes, int]:
     writer = QPdfWriter(buffer)
     writer.setResolution(DOTS_PER_INCH)
     writer.setTitle(f"{content.ward.title}, {content.ward.shift}")
-    writer.setCreator(tr("Luffmark"))
+    writer.setCreator("Luffmark")
     set_paper(writer, paper)
     pages = paint(content, writer, DOTS_PER_INCH)
     buffer.close()

@@ -73,10 +73,12 @@ class WardWriter(SheetWriter):
         escalate = any(x.tier == "escalate" for x in s.flags_open)
         if not escalate and not any(d.what in GAS and d.state == "overdue" for d in s.due):
             return ""
-        plan = str(s.now.profile.get("plan") or formats.ABSENT).rstrip(".")
+        plan = str(s.now.profile.get("plan") or tr(formats.ABSENT)).rstrip(".")
         newest = s.told[-1] if s.told else None
-        called = f"{self._clock(newest.at)} {told_words(newest.words or 'somebody')}" if newest else formats.ABSENT
-        return tr("Plan: {plan}. Told: {rstrip}.").format(plan=plan, rstrip=called.rstrip("."))
+        called = tr(formats.ABSENT)
+        if newest is not None:
+            called = f"{self._clock(newest.at)} {told_words(newest.words or tr('somebody'))}"
+        return tr("Plan: {plan}. Told: {told}.").format(plan=plan, told=called.rstrip("."))
 
     def _support_short(self, f: EpisodeFigures) -> str:
         """Support and oxygen as short as a ward's list needs them."""
@@ -116,7 +118,7 @@ class WardWriter(SheetWriter):
         return text.strip() or tr("No response judged yet.")
 
     def _flag_line(self, f: FlagFigure) -> str:
-        return f"{f.tier.upper()} {self._remark(f)}"
+        return f"{tr(f.tier).upper()} {self._remark(f)}"
 
     def _ward_missing(self) -> Iterator[str]:
         """What nobody recorded and the next shift will ask for."""

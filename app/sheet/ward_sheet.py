@@ -176,7 +176,7 @@ class DueList:
 
     def _style(self, item: str) -> Style:
         size = BODY.size if len(self.items) <= _MANY else SMALL.size
-        return Style(size, "OVERDUE" in item)
+        return Style(size, tr("OVERDUE") in item)
 
     def _width(self, press: Press, width: float) -> float:
         return (width - press.gap(10) * (self._count() - 1)) / self._count()

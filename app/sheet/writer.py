@@ -99,15 +99,15 @@ def quiet_since(s: ShiftFigures) -> int | None:
 
 def limits_of_care(profile: Mapping[str, float | str | None]) -> str:
     """How far treatment goes, in whole words: full support must not be taken for a full ceiling of anything else."""
-    ceiling = formats.quantity("ceiling_of_care", profile.get("ceiling_of_care") or formats.ABSENT)
-    decided = str(profile.get("resuscitation") or formats.ABSENT)
-    resuscitation = tr("resuscitation: {decided}").format(decided=decided) if decided == formats.ABSENT else decided
+    ceiling = formats.quantity("ceiling_of_care", profile.get("ceiling_of_care") or tr(formats.ABSENT))
+    decided = profile.get("resuscitation")
+    resuscitation = formats.choice_word(str(decided)) if decided else tr("resuscitation: not recorded")
     return tr("Ceiling of care: {ceiling}; {resuscitation}.").format(ceiling=ceiling, resuscitation=resuscitation)
 
 
 def is_limited(profile: Mapping[str, float | str | None]) -> bool:
     """Whether anything is withheld: who reads only the bold print must read that."""
-    open_ended = ("full", tr("for resuscitation"), tr("not recorded"), None, "")
+    open_ended = ("full", "for resuscitation", "not recorded", None, "")
     return any(profile.get(k) not in open_ended for k in ("ceiling_of_care", "resuscitation"))
 
 

@@ -1,4 +1,4 @@
-"""A made-up language on every page and dialog: what does not come out in it never went through translation.
+"""A made-up language on every page, dialog and handover line: what stays as it was never went through translation.
 
 The translator puts every text in marks. What stands outside the marks may only be data: a value with its unit, a
 clinical abbreviation, what people typed, a policy's source.
@@ -22,7 +22,7 @@ TRADE = frozenset(
     """
     IPAP EPAP CPAP BPAP FiO SpO PaCO PaO HCO GCS ACVPU HACOR NEWS HFN ROX PCO ARDS COPD NIV min mmHg kPa cmH mmol nmol
     Jan Feb Mar Apr May Jun Jul Aug Sep Oct Nov Dec csv toml luffmark Luffmark Ctrl Shift Alt Home End Left Right Del
-    Esc SHA Europe London UTC LOINC UCUM TOML PDF SVG PNG CSV FHIR PIN Enter
+    Esc SHA Europe London UTC LOINC UCUM TOML PDF SVG PNG CSV FHIR PIN Enter art cap ven
     """.split()  # noqa: SIM905
 )
 """Abbreviations, units, months as they are written, keys and file formats: in no language."""
@@ -117,3 +117,14 @@ def test_the_walk_sees_a_bare_text(qtbot, marked):
     assert bare(label, []) == [("Two words", "Two", "words")]
     label.setText(label.tr("Two words"))
     assert bare(label, []) == []
+
+
+def test_every_line_of_the_handover_went_through_translation(qtbot, tmp_path, marked):
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as window:
+        window.show_page("handover")
+        settled(qtbot, window)
+        qtbot.waitUntil(lambda: len(window.pages.handover.text.toPlainText()) > 200)
+        lines = window.pages.handover.text.toPlainText().splitlines()
+        known = data()
+        found = {line[:90]: wrong for line in lines if (wrong := outside(line, known))}
+        assert found == {}
