@@ -76,7 +76,8 @@ DUE: Final[dict[str, str]] = {
     "due.reassessment_flag": "{marker:marker} since {since:time}[[; last looked at {last_at:time}]].",
     "due.repeat_gas": "After the gas of {gas_at:time}: pH {ph:2}[[, {state:" + _STATE + "}]].",
     "due.repeat_gas_flag": "{marker:marker} since {since:time}; last gas at {gas_at:time}.",
-    "due.repeat_gas_soon": "After the gas of {gas_at:time}: pH {ph:2}, {why:pick severe=severe acidosis;worse=worse;"
+    "due.repeat_gas_soon": "After the gas of {gas_at:time}: pH {ph:2}, {why:pick severe=severe acidosis;"
+        "doubtful=in doubt;worse=worse;"
         "worse since start=worse since the start;gain lost=gain lost;not better=not better}.",
     "due.skin_check": "Skin under the mask last seen, or support begun, at {last_at:time}.",
     "due.spo2_recheck": "One reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",

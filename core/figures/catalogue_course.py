@@ -20,13 +20,14 @@ SUPPORT: Final = (
         "hours_on_mask", "Hours on the mask since support started", "h",
         "time from the start to now or the end of support, less logged breaks", "definition", "common practice",
         "core.judgement.support_findings.support_figure", _HOURS + "test_a_night_worked_by_hand",
-        "None where the start is not recorded; breaks that nobody logged count as on the mask.",
+        "None where the start is not recorded; breaks that nobody logged count as on the mask. After 12 h without "
+        "any entry the hours are presumed.",
     ),
     _line(
         "hours_on_mask_last_24h", "Hours on the mask in the last 24 h", "h",
         "the same within the 24 h before now", "definition", "common practice",
         "core.judgement.support_findings.support_figure", _HOURS + "test_only_the_last_day_counts_for_the_last_day",
-        "Breaks that nobody logged count as on the mask.",
+        "Breaks that nobody logged count as on the mask. After 12 h without any entry the hours are presumed.",
     ),
     _line(
         "probable_breaks", "Breaks that nobody logged", "",

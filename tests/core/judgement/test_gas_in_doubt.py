@@ -100,3 +100,10 @@ def test_an_older_better_does_not_stand_in_for_a_newest_gas_in_doubt():
     found = episode_figures(episode(log), at("04:10"), POLICY)
     assert found.now.headline == "not judged"
     assert newest(found).headline_gas_at == at("04:00")
+
+
+def test_a_gas_in_doubt_asks_for_another_soon():
+    log = SICK.replace("7.20", "7.27").replace("7.18", "7.28") + "03:10 ph 7.36 paco2 12\n"
+    found = episode_figures(episode(log), at("03:20"), POLICY)
+    item = next(d for d in found.due if d.what == "repeat_gas" and d.done_at is None)
+    assert (item.because.key, item.because.values["why"]) == ("due.repeat_gas_soon", "doubtful")
