@@ -52,6 +52,8 @@ class BackupKeeper(QObject):
         self.folder = folder_for(folder, model.session.store_path)
         self.witness = witness
         self.newest: Rotated | None = None
+        self.expire = True
+        """Whether old ones may go: not once the store was found damaged."""
         self._look = QTimer(self)
         self._look.setInterval(LOOK_MS)
         self._look.timeout.connect(self.look)
@@ -85,7 +87,7 @@ class BackupKeeper(QObject):
         self._ask(now=True)
 
     def _ask(self, *, now: bool, pages: bool = False) -> None:
-        request = Rotation(self.folder, now, self.witness, pages)
+        request = Rotation(self.folder, now, self.witness, pages, self.expire)
         self._model.ask(operations.rotate, request, done=self._done, failed=self._failed)
 
     def _done(self, outcome: Outcome[Rotated]) -> None:

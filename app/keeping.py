@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QObject, QTimer
 
 from app.backups import BackupKeeper
+from app.chain_watch import ChainWatch
 from app.draft_keeper import DraftKeeper
 from app.failure import Failure
 from app.form_drafts import LostForm
@@ -46,6 +47,7 @@ class Keeping(QObject):
         self._model: SessionModel | None = None
         self.drafts: DraftKeeper | None = None
         self.backups: BackupKeeper | None = None
+        self.chain: ChainWatch | None = None
         self._busy, self._left = False, ""
         self._told: tuple[str, ...] = ()
         self._disk: Message | None = None
@@ -95,6 +97,8 @@ class Keeping(QObject):
         self.backups = BackupKeeper(opened.model, kept.backup_folder, kept.witness_file, self)
         self.backups.stands.connect(self._backups_stand)
         self.backups.failed.connect(self._backup_failed)
+        self.chain = ChainWatch(opened.model, self)
+        self.chain.unsound.connect(self._unsound)
         opened.model.changed.connect(self._changed)
         opened.model.runner.troubled.connect(self._troubled)
         self.surroundings.start(opened.model.session.store_path)
@@ -110,6 +114,10 @@ class Keeping(QObject):
             self.backups.stop()
             self.backups.deleteLater()
             self.backups = None
+        if self.chain is not None:
+            self.chain.stop()
+            self.chain.deleteLater()
+            self.chain = None
         self._model, self.drafts, self._busy, self._told = None, None, False, ()
         self._disk, self._disks, self._left = None, (), ""
         self.locking.closing()
@@ -190,6 +198,8 @@ class Keeping(QObject):
             self.drafts.look_for_lost()
         if self.backups is not None:
             self.backups.start()
+        if self.chain is not None:
+            self.chain.start()
 
     def _tell_notices(self) -> None:
         if self._model is None:
@@ -232,6 +242,14 @@ class Keeping(QObject):
         if failure.message.key in STANDING:
             told = sentence(failure.message, self._window.reader)
             self.notices.tell(DAMAGED, told, lasting=True, ways=ways_out_of(failure.message.key))
+
+    def _unsound(self, found: tuple[Message, ...]) -> None:
+        """A plain store holds what was never recorded: whoever reads figures must know, and no backup may go."""
+        if self.backups is not None:
+            self.backups.expire = False
+        told = self.tr("The store is not sound, figures of it may be wrong: {what} Backups made before are kept.")
+        first = sentence(found[0], self._window.plain_reader)
+        self.notices.tell(DAMAGED, told.format(what=first), lasting=True, ways=ways_out_of("store.damaged"))
 
     def tell_unsound(self, findings: int) -> None:
         """The check found something: that stands here, with the ways out, until the store is closed."""

@@ -79,8 +79,8 @@ def is_due(folder: Path, store: Path, now: Instant) -> bool:
     return newest is None or not 0 <= now - newest < EVERY
 
 
-def rotate(store: Store, folder: Path, now: Instant) -> Path:
-    """Take a backup now and remove those whose time is over; where the new one lies.
+def rotate(store: Store, folder: Path, now: Instant, *, expire: bool = True) -> Path:
+    """Take a backup now and remove those whose time is over (`expire`); where the new one lies.
 
     Nothing is removed before the new one has been opened and is on the disk.
 
@@ -90,6 +90,8 @@ def rotate(store: Store, folder: Path, now: Instant) -> Path:
     stamp = f"{to_datetime(now):%Y%m%dT%H%M%SZ}"
     target = folder / f"{store.path.stem}.{stamp}.luff"
     store.backup(target)
+    if not expire:
+        return target
     found = backups_in(folder, store.path)
     gone = [found[at] for at in found.keys() - kept(found, now)]
     beside = backups_in(store.path.parent, store.path)  # made before a migration: kept a year too

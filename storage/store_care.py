@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -28,8 +29,9 @@ class StoreCare(StoreKept):
         """Whether nothing can be written; `notices` say why where nobody asked for it."""
         return self._opened.database.read_only
 
-    def verify(self) -> tuple[Message, ...]:
-        """Check the store whole; one message per finding, none when all is well.
+    def verify(self, step: Callable[[], None] = lambda: None) -> tuple[Message, ...]:
+        """Check the store whole; one message per finding, none when all is well. `step`: called again and again;
+        what it raises stops the check.
 
         Raises:
             StoreError: `store.newer` for a store of a newer format: its rows may hold more than is known here.
@@ -39,7 +41,7 @@ class StoreCare(StoreKept):
         if newer := opening.newer_notice(self._opened.facts, self.path):
             raise store_error("store.newer", **newer.values, accepted=s.FORMAT)
 
-        return findings(self._opened.database, encrypted=self.is_encrypted)
+        return findings(self._opened.database, encrypted=self.is_encrypted, step=step)
 
     def check_pages(self) -> None:
         """Read every page and hold it against its proof (encrypted) or its form (plain): quicker than `verify`.

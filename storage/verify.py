@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import heapq
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from functools import partial
 from hashlib import sha256
 from typing import Any
@@ -21,11 +21,17 @@ from storage.errors import StoreError
 from storage.triggers import trigger_findings
 
 _Digest = tuple[int, int, str]  # sequence, batch, digest
+_STEP_ROWS = 1_000
+_MOST_NAMED = 3
 
 
-def findings(database: Database, *, encrypted: bool) -> tuple[Message, ...]:
-    """Everything that is wrong with a store; empty when all is well. Never raises for damage: it reports it."""
-    checks = (partial(_pages, encrypted=encrypted), _facts, _triggers, _chain, _blobs, _entries, _kept, _derived)
+def findings(database: Database, *, encrypted: bool, step: Callable[[], None] = lambda: None) -> tuple[Message, ...]:
+    """Everything that is wrong with a store; empty when all is well. Never raises for damage: it reports it.
+
+    `step` is called every thousand rows; what it raises stops the check.
+    """
+    checks = (partial(_pages, encrypted=encrypted), _facts, _triggers, partial(_chain, step=step),
+              partial(_blobs, step=step), _entries, _kept, _derived)  # fmt: skip
     found: list[Message] = []
     for check in checks:
         try:
@@ -57,10 +63,10 @@ def _kept(connection: sa.Connection) -> list[Message]:
     return [Message("verify.kept", {"table": table, "name": name}) for table, name in found]
 
 
-def _chain(connection: sa.Connection) -> list[Message]:
+def _chain(connection: sa.Connection, step: Callable[[], None]) -> list[Message]:
     """Walk the chain; name its first broken link, and rows that no batch owns."""
     found: list[Message] = []
-    rows = _row_digests(connection)
+    rows = _stepping(_row_digests(connection), step)
     pending = next(rows, None)
     hash_before, seq_before, time_before = GENESIS, 0, None
     headers = connection.execute(sa.select(s.batch).order_by(s.batch.c.seq)).mappings()
@@ -73,12 +79,30 @@ def _chain(connection: sa.Connection) -> list[Message]:
         if wrong is None and time_before is not None and header["recorded_at"] < time_before:
             wrong = "recorded_at"
         if wrong:
-            found.append(Message("verify.chain", {"batch": header["seq"], "what": wrong}))
+            where = _where(connection, header)
+            found.append(Message("verify.chain", {"batch": header["seq"], "what": wrong, **where}))
             return found
         hash_before, seq_before, time_before = header["hash"], header["last_seq"], header["recorded_at"]
     if pending is not None:
         found.append(Message("verify.orphan", {"seq": pending[0], "batch": pending[1]}))
     return found
+
+
+def _stepping(rows: Iterator[_Digest], step: Callable[[], None]) -> Iterator[_Digest]:
+    for number, row in enumerate(rows):
+        if number % _STEP_ROWS == 0:
+            step()
+        yield row
+
+
+def _where(connection: sa.Connection, header: dict[str, Any]) -> dict[str, Any]:
+    """What a person can look for: when the batch was recorded, by whom, and of which episodes it is."""
+    rows = sa.union(*(sa.select(t.c.episode_id).where(t.c.batch_seq == header["seq"]) for t in (s.entry, s.chunk)))
+    episodes = sorted(str(r[0]) for r in connection.execute(rows))
+    more = [f"and {len(episodes) - _MOST_NAMED} more"] if len(episodes) > _MOST_NAMED else []
+    at = header["recorded_at"]
+    return {"at": at if isinstance(at, int) else None, "by": str(header["by"]) or None,
+            "episodes": ", ".join(episodes[:_MOST_NAMED] + more) or None}  # fmt: skip
 
 
 def _link(header: dict[str, Any], own: list[_Digest], hash_before: str, seq_before: int, number: int) -> str | None:
@@ -118,9 +142,10 @@ def _safe_digest(table: str, row: dict[str, Any]) -> str:
         return sha256(b"unreadable").hexdigest()
 
 
-def _blobs(connection: sa.Connection) -> list[Message]:
+def _blobs(connection: sa.Connection, step: Callable[[], None]) -> list[Message]:
     found: list[Message] = []
     for row in connection.execute(sa.select(s.chunk).order_by(s.chunk.c.seq)).mappings():
+        step()
         try:
             t, _v, _d = decode(bytes(row["blob"]), row["t0"], bytes(row["sha"]))
             whole = t.size == row["n"] and int(t[0]) == row["t0"] and int(t[-1]) == row["t1"]

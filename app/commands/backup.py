@@ -3,15 +3,23 @@
 from __future__ import annotations
 
 import argparse
+import sys
 
 from app.commands.context import Context
 from app.operations import backup as operations
+from app.words import sentence
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Write the backup; an existing file is never overwritten."""
-    with context.open() as store:
+    with context.open(check=False) as store:
         made = operations.write(store, context.by, context.now(), args.file).value
     value = {"backup": str(made.path), "bytes": made.size, "head": made.printed_head}
-    context.answer(f"Backup {made.path}, {made.size:,} bytes, head {made.printed_head}.", value)
-    return 0
+    if not made.damage:
+        context.answer(f"Backup {made.path}, {made.size:,} bytes, head {made.printed_head}.", value)
+        return 0
+    value |= {"damage": [sentence(m, context.reader()) for m in made.damage]}
+    context.answer(f"Backup {made.path} holds the damage of the store. Keep it, and every backup made before.", value)
+    print(f"luffmark: {sentence(made.damage[0], context.reader())} restore refuses this copy, salvage reads it.",
+          file=sys.stderr)  # fmt: skip
+    return 1

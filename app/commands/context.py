@@ -78,13 +78,15 @@ class Context:
         """The passphrase from its descriptor, its line end taken off; None where none was given."""
         return line_of(self.passphrase_fd)
 
-    def open(self, *, read_only: bool = False, proven: bool = False) -> Store:
+    def open(self, *, read_only: bool = False, proven: bool = False, check: bool = True) -> Store:
         """The store, opened. What a person should know of how it opened goes to stderr. To write into a store whose
-        people sign in, a person gives initials and PIN, unless another proof is checked after (`proven`).
+        people sign in, a person gives initials and PIN, unless another proof is checked after (`proven`). `check`:
+        whether a plain store is held against its chain first.
 
         Raises:
             RecordError: `people.*`.
         """
+        from app.operations.store import check_if_quick
         from app.words import sentence
         from storage.store import Store
 
@@ -93,6 +95,9 @@ class Context:
         store = Store.open(self.store_path, passphrase=self.passphrase(), read_only=read_only)
         for notice in (*store.notices, *_policies_passed_over(store)):
             remark(sentence(notice, self.reader()))
+        if check:
+            for wrong in check_if_quick(store, self.by, self.now(), None).value:
+                remark(f"The store is not sound, figures of it may be wrong: {sentence(wrong, self.reader())}")
         if not (read_only or proven):
             try:
                 self.prove(store)

@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING
 
 from app.operations.outcome import Outcome
 from app.operations.people import require_lead
+from app.operations.store import check_if_quick
 from core.record.instant import Instant
 from core.record.message import Message, Value, refuse
 from storage.errors import StoreError
@@ -25,11 +26,12 @@ LEAST_FREE, TIMES_STORE = 500_000_000, 4
 
 @dataclass(frozen=True, slots=True)
 class BackupFacts:
-    """A backup that was written: where, how large, and the head it holds."""
+    """A backup that was written: where, how large, the head it holds, and what is wrong with what it copied."""
 
     path: Path
     size: int
     printed_head: str
+    damage: tuple[Message, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,6 +43,8 @@ class Rotation:
     now: bool = False
     witness: str = ""
     pages: bool = False
+    expire: bool = True
+    """Whether those whose time is over go: not while the store is known to be damaged, they may be the good ones."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -86,14 +90,16 @@ class Restored:
 
 
 def write(store: Store, who: str, now: Instant, request: Path) -> Outcome[BackupFacts]:
-    """Write a backup; an existing file is never overwritten.
+    """Write a backup; an existing file is never overwritten. A copy of a damaged store is written all the same, for
+    it may be all that is left: `damage` says that it holds the same damage.
 
     Raises:
         StoreError: `store.exists`, `store.no_folder`, `store.disk_full`, `store.backup_failed`.
     """
     head = store.printed_head()
     store.backup(request)
-    return Outcome(BackupFacts(request, request.stat().st_size, head), store.head())
+    wrong = check_if_quick(store, who, now, None).value
+    return Outcome(BackupFacts(request, request.stat().st_size, head, wrong), store.head())
 
 
 def rotate(store: Store, who: str, now: Instant, request: Rotation) -> Outcome[Rotated]:
@@ -107,7 +113,7 @@ def rotate(store: Store, who: str, now: Instant, request: Rotation) -> Outcome[R
     taken = request.now or backup_rotation.is_due(request.folder, store.path, now)
     if taken:
         request.folder.mkdir(parents=True, exist_ok=True)
-        backup_rotation.rotate(store, request.folder, now)
+        backup_rotation.rotate(store, request.folder, now, expire=request.expire)
         if request.witness:
             witness.add(Path(request.witness), store, now)
     elif request.pages:

@@ -123,7 +123,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.restore_failed": "The store {path} could not be made from the backup: {detail}.",
     "store.trigger": "A safeguard of the store is not as it should be ({name}: {what}): "
         "it is open for reading only. Run verify.",
-    "verify.chain": "The chain breaks at batch {batch}: {what:pick " + _CHAIN + "}.",
+    "verify.chain": "The chain breaks at batch {batch}[[, recorded {at:time}]][[ by {by}]][[, of {episodes}]]: "
+        "{what:pick " + _CHAIN + "}.",
     "verify.chunk": "Device samples of {channel:name} in episode {episode} are damaged (row {seq}).",
     "verify.derived": "The table {table} does not agree with the ledger for {count} episode(s), "
         "first {episode}.",

@@ -13,8 +13,8 @@ from core.record.entries import NewEntry
 from core.record.samples import DeviceSamples
 from storage.engine import raw_connection
 from storage.store import Store, StoreError
-from storage.triggers import expected_triggers
 from tests.storage.conftest import NOW
+from tests.support.tampered import tamper
 
 
 @pytest.fixture
@@ -31,19 +31,6 @@ def filled(store: Store) -> Path:
     store.record_event("printed", person="AB", now=NOW)
     store.close()
     return store.path
-
-
-def tamper(path: Path, *statements: str) -> None:
-    """What somebody with the key and a database program could do."""
-    c = raw_connection(path, None)
-    c.execute("PRAGMA foreign_keys = OFF")
-    for name in expected_triggers():
-        c.execute(f"DROP TRIGGER {name}")
-    for statement in statements:
-        c.execute(statement)
-    for text in expected_triggers().values():
-        c.execute(text)
-    c.close()
 
 
 def findings(path: Path) -> list[tuple[str, object]]:
