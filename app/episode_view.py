@@ -192,7 +192,7 @@ class EpisodeView(QWidget):
         """State and verdict in the fewest words, where the eye falls first."""
         gas = next((g for g in reversed(on.figures.gases) if g.site != "venous"), None)
         if gas is not None:
-            yield state_now(on.figures, gas, on.gas_unit)
+            yield state_now(on.figures, gas, on.gas_unit, on.zone)
         told = headline(on.figures)
         if told is not None:
             yield told.short

@@ -142,11 +142,14 @@ def response_state_word(f: EpisodeFigures, response: ResponseFigure) -> str:
     return gas_state_word(f, gas if gas is not None else GasFigure(response.anchor_at, "", state=response.state))
 
 
-def pf_word(f: EpisodeFigures, gas_unit: str) -> str:
-    """The newest P/F where oxygen is what fails, "" elsewhere."""
+def pf_word(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:
+    """The newest P/F where oxygen is what fails, "" elsewhere; with its time where not of this gas."""
     if not f.now.oxygen_failure or f.now.pf_mmHg is None:
         return ""
-    return f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit)}"
+    told = f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit)}"
+    if f.now.pf_at is None or f.now.pf_at == gas.at:
+        return told
+    return translate("headline", "{pf} at {time}").format(pf=told, time=clock(f.now.pf_at, zone))
 
 
 def beside_pf(pf: str, state: str) -> str:
@@ -165,9 +168,9 @@ def beside_pf(pf: str, state: str) -> str:
     return f"{pf}; {of_ph}"
 
 
-def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str) -> str:
+def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:
     """The state in a few words, the oxygen first where it is what fails: P/F 107 mmHg; not acidotic."""
-    state = beside_pf(pf_word(f, gas_unit), gas_state_word(f, gas))
+    state = beside_pf(pf_word(f, gas, gas_unit, zone), gas_state_word(f, gas))
     return translate("headline", "{state}, last gas off support").format(state=state) if gas.off_support else state
 
 

@@ -63,7 +63,7 @@ def _now(f: EpisodeFigures, lines: FigureLines) -> Iterator[str]:
     if off := off_mask_word(f, lines.reader.zone):
         yield off[:1].upper() + off[1:]
     if gas is not None:
-        yield f"State: {state_now(f, gas, lines.reader.gas_unit)}"
+        yield f"State: {state_now(f, gas, lines.reader.gas_unit, lines.reader.zone)}"
     if (told := headline(f)) is not None:
         yield f"Response: {told.word}"
         if told.since_start is not None:

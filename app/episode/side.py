@@ -187,7 +187,7 @@ class _Facts:
         yield Fact(self.theme, self._support(), tuple(self._mask_time()), explanation=self._hours())
 
     def _state(self, gas: GasFigure) -> str:
-        pf = pf_word(self.f, self.reader.gas_unit)
+        pf = pf_word(self.f, gas, self.reader.gas_unit, self.reader.zone)
         state = beside_pf(pf, gas_state_word(self.f, gas))
         if gas.off_support:
             state = translate("side", "{state}, drawn off support").format(state=state)

@@ -51,7 +51,9 @@ class SheetWriter:
         pf = f", P/F {self._lines.pressure(last.pf_mmHg)}" if last.pf_mmHg is not None else ""
         if f.now.oxygen_failure and f.now.pf_mmHg is not None:
             first = "P/F" if ever_acidotic(f) else tr("Hypoxaemic: P/F")
-            state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}; {lowered(state)}", ""
+            dated = f.now.pf_at is not None and f.now.pf_at != last.at
+            at = tr(" at {moment}").format(moment=self._moment(f.now.pf_at)) if dated and f.now.pf_at else ""
+            state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}{at}; {lowered(state)}", ""
         off = tr(", last gas drawn off support") if last.off_support else ""
         return (
             f"{state}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"

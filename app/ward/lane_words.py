@@ -129,7 +129,9 @@ class LaneWords:
         if off := off_mask_word(f, self.zone):  # a state that is none of acidosis is left to its shape
             acid = gas is not None and gas.state in ("severe", "acidotic")
             return f"{off}; {gas_state_word(f, gas)}" if gas is not None and acid else off
-        return state_now(f, gas, self.gas_unit) if gas is not None else translate("ward", "no gas logged yet")
+        return (
+            state_now(f, gas, self.gas_unit, self.zone) if gas is not None else translate("ward", "no gas logged yet")
+        )
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
@@ -166,7 +168,8 @@ class LaneWords:
         gas = _latest_gas(f)
         if gas is not None:
             parts.append(
-                f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} ({state_now(f, gas, self.gas_unit)})"
+                f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} "
+                f"({state_now(f, gas, self.gas_unit, self.zone)})"
             )
         parts.append(silent_word(s, self.zone))
         parts += verdict_sentences(f)

@@ -24,6 +24,7 @@ def now_figure(seen: Observed) -> NowFigure:
         ever_acidotic=any(g.state in ("severe", "acidotic") for g in gases),
         oxygen_failure=oxygen_failure(seen),
         pf_mmHg=with_pf.pf_mmHg if with_pf is not None else None,
+        pf_at=with_pf.at if with_pf is not None else None,
         headline=told.headline if told is not None else None,
         headline_at=told.headline_gas_at if told is not None else None,
         gain_lost=told is not None and told.gain_lost,

@@ -363,6 +363,8 @@ class NowFigure:
     """The newest arterial P/F on support is at or below 300 and the newest gas is not acutely hypercapnic."""
     pf_mmHg: float | None = None
     """The newest arterial P/F on support."""
+    pf_at: Instant | None = None
+    """Its gas, which need not be the newest: it is never shown under another gas's time."""
     headline: str | None = None
     """Of the newest gas that gives one; None without any response."""
     headline_at: Instant | None = None

@@ -74,23 +74,35 @@ def test_what_waits_still_says_the_sum_since_the_start() -> None:
 def test_what_never_was_acidotic_has_not_resolved() -> None:
     f = bed("Bay B 5")
     assert gas_state_word(f, f.gases[-1]) == "not acidotic"
-    assert state_now(f, f.gases[-1], "mmHg") == "not acidotic"
+    assert state_now(f, f.gases[-1], "mmHg", "UTC") == "not acidotic"
     resolved = bed("Bed 3")
     assert gas_state_word(resolved, resolved.gases[-1]) == "resolved"
 
 
 def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
     f = bed("Bay A 1")
-    assert state_now(f, f.gases[-1], "mmHg") == "P/F 107 mmHg; not acidotic"
-    assert state_now(f, f.gases[-1], "kPa") == "P/F 14.3 kPa; not acidotic"
+    assert state_now(f, f.gases[-1], "mmHg", "UTC") == "P/F 107 mmHg; not acidotic"
+    assert state_now(f, f.gases[-1], "kPa", "UTC") == "P/F 14.3 kPa; not acidotic"
     off = replace(f.gases[-1], off_support=True, state="acidotic")
-    assert state_now(f, off, "mmHg") == "P/F 107 mmHg; acidotic, last gas off support"
+    assert state_now(f, off, "mmHg", "UTC") == "P/F 107 mmHg; acidotic, last gas off support"
+
+
+def test_a_pf_of_an_older_gas_says_its_own_time() -> None:
+    minute = 60_000_000
+    old = GasFigure(325 * minute, "arterial", ph=7.40, pf_mmHg=107.0, state="resolved")
+    new = GasFigure(336 * minute, "arterial", ph=7.41, state="resolved")
+    now = NowFigure(oxygen_failure=True, pf_mmHg=107.0, pf_at=old.at)
+    f = EpisodeFigures("E", new.at, gases=(old, new), now=now)
+    assert state_now(f, new, "mmHg", "UTC") == "P/F 107 mmHg at 05:25; not acidotic"
+    assert state_now(replace(f, gases=(old,)), old, "mmHg", "UTC") == "P/F 107 mmHg; not acidotic"
 
 
 def test_a_low_pf_never_reads_as_resolved() -> None:
     gas = GasFigure(5, "arterial", ph=7.38, state="resolved", pf_mmHg=273.0)
     now = NowFigure(ever_acidotic=True, oxygen_failure=True, pf_mmHg=273.0)
-    assert state_now(EpisodeFigures("E", 9, gases=(gas,), now=now), gas, "mmHg") == "P/F 273 mmHg; not acidotic"
+    assert (
+        state_now(EpisodeFigures("E", 9, gases=(gas,), now=now), gas, "mmHg", "UTC") == "P/F 273 mmHg; not acidotic"
+    )
 
 
 def test_a_ph_above_its_limits_is_no_normal_one() -> None:

@@ -108,6 +108,13 @@ def row(content: SheetContent, label: str) -> WardRow:
     return next(r for r in content.ward.rows if r.label == label)
 
 
+def test_a_pf_of_an_older_gas_is_not_dated_with_the_newest(tmp_path: Path) -> None:
+    ventilated = ("23:00 mode bpap-st", "23:00 16/8 60", "00:30 ph 7.44 pco2 34 po2 64 site arterial")
+    _, page = one(tmp_path, *ventilated, "03:40 ph 7.41 pco2 38 site arterial", facts={"indication": "pneumonia"})
+    assert "P/F 107 mmHg at 00:30" in page.standing
+    assert page.standing.endswith("pH 7.41, PaCO2 38 mmHg at 03:40")
+
+
 def test_limits_of_care_are_said_whole_and_strongly(content: SheetContent) -> None:
     assert row(content, "Bed 4").limits == "Ceiling of care: full treatment; for resuscitation."
     limited = row(content, "Bay A 4")

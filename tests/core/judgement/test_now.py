@@ -35,6 +35,8 @@ def test_oxygen_failure_is_not_called_resolved_alone():
     log = LUNG_START + "02:00 ph 7.45 paco2 34 pao2 53.5 gas_fio2 0.5 site arterial"
     found = now(log, "02:10")
     assert (found.state, found.ever_acidotic, found.oxygen_failure, found.pf_mmHg) == ("resolved", False, True, 107)
+    later = now(log + "\n03:00 ph 7.46 paco2 33 site arterial", "03:10")  # no PaO2: the P/F keeps its own time
+    assert (later.pf_mmHg, later.pf_at) == (107, at("02:00"))
     acidotic = now(log + "\n04:00 ph 7.29 paco2 58 pao2 53.5 gas_fio2 0.5 site arterial", "04:10")
     assert (acidotic.ever_acidotic, acidotic.oxygen_failure) == (True, False)
     assert now(LUNG_START, "01:10").pf_mmHg is None  # its only P/F was before support
