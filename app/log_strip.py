@@ -9,15 +9,6 @@ from __future__ import annotations
 from html import escape
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QResizeEvent
-from PySide6.QtWidgets import (
-    QBoxLayout,
-    QFrame,
-    QHBoxLayout,
-    QLabel,
-    QSizePolicy,
-    QVBoxLayout,
-)
 
 from app.failure import Failure
 from app.operations import correction, entry
@@ -26,37 +17,30 @@ from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
 from app.readers import reader_at
 from app.session import SessionModel
-from app.strip.caution_line import with_caution
 from app.strip.completion import completed, completions
-from app.strip.line_field import LineField
-from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, TOLD, OneKeyButtons
+from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, TOLD
 from app.strip.preview_words import preview_words, recorded_words, undone_words
 from app.strip.reading_time import ReadingTime
 from app.strip.said_html import completion_html, marked, preview_html, quiet
 from app.strip.sent_lines import Sent, SentLines
 from app.strip.settle_time import SettleTime
 from app.strip.state import State
+from app.strip.strip_frame import StripFrame
 from app.strip.undo_stack import UndoStack
 from app.theme import Theme
 from app.words import Reader, sentence
 from core.record.episode import Episode
 
-LEAST_LINE = 200
-"""Least width of the line at 100 % beside the keys' buttons; where it has less they stand under it."""
-TIGHT = 560
-"""Least height of the window at 100 % at which buttons have a row of their own; their keys and menu stay."""
 
-
-class LogStrip(QFrame):
+class LogStrip(StripFrame):
     """The strip for the selected episode. `recorded` after each entry; `left` when Esc hands the focus back."""
 
     recorded = Signal(object)
     left = Signal()
 
     def __init__(self, theme: Theme, model: SessionModel) -> None:
-        super().__init__()
-        self.setProperty("card", True)
-        self._model, self._theme = model, theme
+        super().__init__(theme)
+        self._model = model
         self._record: Episode | None = None
         self._label, self._gas_unit, self._zone = "", "mmHg", "UTC"
         self.state = State.IDLE
@@ -71,33 +55,9 @@ class LogStrip(QFrame):
         self._undo, self._lines = UndoStack(), SentLines()
         self._off_mask = False
         self._closed = ""
-        self.whom = QLabel()
-        self.whom.setTextFormat(Qt.TextFormat.PlainText)
-        self.whom.setProperty("role", "emphasis")
-        self.line = LineField()
-        self.line.setAccessibleName(self.tr("Log a line"))
-        self.said = QLabel()
-        self.said.setTextFormat(Qt.TextFormat.RichText)
-        self.said.setWordWrap(True)
-        self.said.setAlignment(Qt.AlignmentFlag.AlignTop)
-        self.said.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
-        self.keys = OneKeyButtons()
-        self.buttons = self.keys.by_key
-        self._column = QVBoxLayout(self)
-        self._lay_out()
         self._connect()
         self.set_theme(theme)
         self.set_patient(None, "", "UTC", "mmHg")
-
-    def _lay_out(self) -> None:
-        self._row = QBoxLayout(QBoxLayout.Direction.LeftToRight)
-        line = QHBoxLayout()
-        line.addWidget(self.whom)
-        line.addWidget(self.line, 1)
-        self._row.addLayout(line, 1)
-        self._row.addWidget(self.keys)
-        self._column.addLayout(self._row)
-        self._column.addLayout(with_caution(self.said))
 
     def _connect(self) -> None:
         self.line.textEdited.connect(self._edited)
@@ -108,30 +68,6 @@ class LogStrip(QFrame):
         self.buttons[MASK].clicked.connect(self.mask_moved)
         self.buttons[CHECKED].clicked.connect(self.checked)
         self.buttons[TOLD].clicked.connect(self.told)
-
-    def set_theme(self, theme: Theme) -> None:
-        """Take another look or text size."""
-        self._theme = theme
-        px = theme.px
-        self._column.setContentsMargins(px(12), px(5), px(12), px(4))
-        self._column.setSpacing(px(2))
-        self._row.setSpacing(px(8))
-        self._fit_words(False)
-
-    def _fit_words(self, tight: bool) -> None:
-        """Room for two lines is kept, so that nothing jumps; where height is scarce, for what is said."""
-        line = round(self._theme.px(self._theme.type.body) * 1.25)
-        self.said.setMinimumHeight(line * (1 if tight else 2))
-
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        """Where the line would be too short, the keys' buttons stand under it."""
-        super().resizeEvent(event)
-        rest = self.width() - self.keys.needed() - self.whom.sizeHint().width()
-        tight = rest < self._theme.px(LEAST_LINE) and self.window().height() < self._theme.px(TIGHT)
-        self.keys.setVisible(not tight)
-        self._fit_words(tight)
-        direction = QBoxLayout.Direction
-        self._row.setDirection(direction.LeftToRight if rest >= self._theme.px(LEAST_LINE) else direction.TopToBottom)
 
     # whom it is for
 
