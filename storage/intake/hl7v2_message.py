@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field, replace
-from typing import TYPE_CHECKING, Any, Protocol, overload
+from typing import TYPE_CHECKING, Protocol
 
 from core.record import instant
 from core.record.channels import CHANNELS
@@ -196,12 +196,14 @@ class _Message:
         import hl7
 
         try:
-            parsed: Any = hl7.parse(raw.text)
-            self._segments = [_Fields(segment) for segment in parsed]
-            self._kinds = [fields[0] for fields in self._segments]
+            hl7.parse(raw.text)
         except Exception as error:  # the parser raises whatever its slicing meets
             raise refuse("hl7.unreadable", detail=type(error).__name__, accepted="an HL7 v2 message") from None
+        # what the parser found to be a message is cut into fields here: to ask it for texts would join them anew
         marks = raw.text[3:8].ljust(5)
+        self._segments = [line.split(marks[0]) for line in raw.text.split("\r")]
+        self._segments[0].insert(1, marks[0])  # MSH counts its separator as a field
+        self._kinds = [fields[0] for fields in self._segments]
         self.component, self.repetition, self._escape = marks[1], marks[2], marks[3]
         self._subcomponent, self._mark = marks[4], marks[0]
         self._line = raw.line
@@ -308,29 +310,6 @@ class _Message:
             return marks[name]
 
         return _ESCAPE.sub(undone, text)
-
-
-class _Fields(Sequence[str]):
-    """The fields of a segment as texts, made when they are asked for: most never are."""
-
-    def __init__(self, segment: Any) -> None:
-        self._segment = segment
-        self._made: dict[int, str] = {}
-
-    def __len__(self) -> int:
-        return len(self._segment)
-
-    @overload
-    def __getitem__(self, index: int) -> str: ...
-    @overload
-    def __getitem__(self, index: slice) -> list[str]: ...
-    def __getitem__(self, index: int | slice) -> str | list[str]:
-        if isinstance(index, slice):
-            return [str(f) for f in list.__getitem__(self._segment, index)]
-        made = self._made.get(index)
-        if made is None:
-            made = self._made[index] = str(list.__getitem__(self._segment, index))
-        return made
 
 
 def _get(fields: Sequence[str], index: int) -> str:
