@@ -24,7 +24,7 @@ from app.sheet.writer import (
 from app.ward.ordering import GAS
 from app.words import sentence
 from core.figures.shift import ShiftFigures
-from core.judgement.shapes import EpisodeFigures, FlagFigure
+from core.judgement.shapes import EpisodeFigures, FlagFigure, ResponseFigure
 
 
 class WardWriter(SheetWriter):
@@ -113,9 +113,21 @@ class WardWriter(SheetWriter):
             r = judged[-1]
             anchor = tr("support started") if r.anchor == "start" else self._lines.anchor(r)
             text = f"{self._moment(r.anchor_at)} {anchor}. {opened(self._lines.of(f).verdict(r, brief=True))}"
+            text += self._lost_later(f, r)
         if waiting is not None:
             text += tr(" Change of {moment}: response not yet known.").format(moment=self._moment(waiting.anchor_at))
         return text.strip() or tr("No response judged yet.")
+
+    def _lost_later(self, f: EpisodeFigures, told: ResponseFigure) -> str:
+        """What a newer gas than that of the verdict has lost."""
+        if not f.now.since_start_gain_lost:
+            return ""
+        newest = max(
+            (g for r in f.responses for g in r.gases if g.since_start.gain_lost), key=lambda g: g.at, default=None
+        )
+        if newest is None or newest.at <= (told.headline_gas_at or 0):
+            return ""
+        return f" {self._lines.of(f).loss(newest)}".rstrip()
 
     def _flag_line(self, f: FlagFigure) -> str:
         return f"{tr(f.tier).upper()} {self._remark(f)}"

@@ -45,12 +45,15 @@ class FigureLines:
     """Whether there was an acidosis that could have resolved."""
     above: Mapping[Instant, float] = field(default_factory=dict)
     """Gases whose pH is above its upper limit, and that limit."""
+    gases: Mapping[Instant, GasFigure] = field(default_factory=dict)
+    """Arterial and capillary gases by their moment."""
 
     def of(self, f: EpisodeFigures) -> FigureLines:
         """The same for one episode, whose states depend on what was before."""
         acidotic = f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)
         above = {g.at: g.ph_above for g in f.gases if g.ph_above is not None and g.state is not None}
-        return replace(self, ever_acidotic=acidotic, above=above)
+        gases = {g.at: g for g in f.gases if g.site != "venous"}
+        return replace(self, ever_acidotic=acidotic, above=above, gases=gases)
 
     def state(self, state: str, at: Instant | None = None) -> str:
         """The state of a gas of a moment; what never was acidotic has not resolved, nor is all the rest normal."""
@@ -208,7 +211,31 @@ class FigureLines:
         text = f"{self.headline(r, judged)}: {self.deltas(judged, with_state=not brief)}"
         agree = {judged.co2_arm, judged.oxygen_arm} - {None} == {judged.verdict}
         arms = "" if brief and agree else self.arms(judged)
-        return f"{text} ({arms})." if arms else f"{text}."
+        text = f"{text} ({arms})." if arms else f"{text}."
+        return f"{text} {self.loss(judged)}".rstrip()
+
+    def loss(self, judged: JudgedGas) -> str:
+        """What was lost since the best gas, and when that was: the sum since the baseline may still look good."""
+        told = []
+        for key in ("gain_lost", "oxygen_gain_lost"):
+            if (why := judged.since_start.reasons.get(key)) is not None:
+                best, now = self.gases.get(int(str(why.values["best_at"]))), self.gases.get(judged.at)
+                fell = self._fell(best, now, of_pf=key != "gain_lost") if best and now else ""
+                told.append(f"{self.tr('Lost since')} {self.reader.time(best.at)}: {fell}." if best and fell
+                            else sentence(why, self.reader))  # fmt: skip
+        return " ".join(told)
+
+    def _fell(self, best: GasFigure, now: GasFigure, *, of_pf: bool) -> str:
+        """From the best gas to this one, in the values that tell of the loss."""
+        to = self.tr("to")
+        if of_pf:
+            before = self.pressure(best.pf_mmHg).removesuffix(f" {self.reader.gas_unit}")
+            return f"P/F {before} {to} {self.pressure(now.pf_mmHg)}"
+        parts = [f"pH {self.ph(best)} {to} {self.ph(now)}"]
+        if best.paco2_mmHg is not None and now.paco2_mmHg is not None:
+            before, after = self.paco2(best), self.paco2(now)
+            parts.append(f"PaCO2 {before.removesuffix(f' {self.reader.gas_unit}')} {to} {after}")
+        return ", ".join(parts)
 
     def headline(self, r: ResponseFigure, judged: JudgedGas) -> str:
         """The verdict with a gain that was lost, and the verdict since the start where it is another."""

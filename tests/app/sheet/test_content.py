@@ -153,8 +153,17 @@ def test_what_is_closed_says_whether_anybody_settled_it(content: SheetContent) -
 
 def test_a_relapse_and_the_sum_since_the_start_stand_on_the_first_page(content: SheetContent) -> None:
     assert "Gain lost, still better: pH" in row(content, "Bed 5").response
+    assert row(content, "Bed 5").response.endswith("Lost since 01:55: pH 7.34 to 7.27, PaCO2 63 to 78 mmHg.")
     assert "No clear change (since the start: worse): pH" in row(content, "Bed 4").response
     assert "No clear change (since the start: better): pH" in row(content, "Bed 2").response
+
+
+def test_a_gain_that_a_later_gas_lost_is_told_with_the_moment_of_the_best(tmp_path: Path) -> None:
+    lines = ("23:30 ph 7.25 pco2 78 site arterial", "23:40 mode bpap-st", "23:40 16/5 30",
+             "00:40 ph 7.36 pco2 56 site arterial", "02:00 ipap 20", "02:15 ph 7.27 pco2 74")  # fmt: skip
+    found, _ = one(tmp_path, *lines, facts={"indication": "copd"})
+    told = found.ward.rows[0].response
+    assert "Lost since 00:40: pH 7.36 to 7.27, PaCO2 56 to 74 mmHg." in told, told
 
 
 def test_plan_and_call_stand_on_the_first_page_where_something_is_to_be_done(content: SheetContent) -> None:
