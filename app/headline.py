@@ -6,6 +6,7 @@ A gain that was lost and a sum since the start that says otherwise stand beside 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from app.formats import clock, fixed, gas_pressure
@@ -14,7 +15,12 @@ from app.theme import GasState, Verdict, state_word, verdict_of, verdict_word
 from app.words.verdict_loss import LOST_SINCE, with_loss
 from core.judgement.now import headline_response
 from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
+from core.record.message import Message
 
+_DECIDES = frozenset({
+    "response.over_correction", "response.tiring_not_excluded", "response.gain_lost", "response.not_better_in_doubt",
+    "response.towards_normal",
+})  # fmt: skip
 _CLEAR = (Verdict.BETTER, Verdict.WORSE, Verdict.MIXED, Verdict.OVER_CORRECTION)
 
 
@@ -86,6 +92,13 @@ def since_start_words(judged: JudgedGas) -> str:
 def judged_by(response: ResponseFigure) -> JudgedGas | None:
     """The gas that a headline rests on."""
     return next((g for g in reversed(response.gases) if g.at == response.headline_gas_at), None)
+
+
+def deciding(why: Sequence[Message]) -> tuple[Message, ...]:
+    """The reasons that stand beside a verdict: each change beyond noise, and what is lost or in doubt; the first
+    reason where there is none. A pH within noise alone would contradict a verdict that PaCO2 gave."""
+    found = tuple(m for m in why if m.key in _DECIDES or m.values.get("direction") in ("up", "down"))
+    return found or tuple(why[:1])
 
 
 def lost_gain(response: ResponseFigure) -> bool:

@@ -24,6 +24,7 @@ from app.formats import clock, hours, minutes, opened, since, trimmed
 from app.headline import (
     Headline,
     beside_pf,
+    deciding,
     ever_acidotic,
     gas_state_word,
     headline,
@@ -217,7 +218,7 @@ class _Facts:
                 anchor=anchor_name(response), time=clock(response.anchor_at, self.reader.zone)
             )
         ]
-        lines += [sentence(m, self.reader) for m in response.why[:1]]
+        lines += [sentence(m, self.reader) for m in deciding(response.why)]
         return Fact(
             self.theme,
             told.word,

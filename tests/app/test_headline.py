@@ -6,6 +6,7 @@ import pytest
 
 from app.headline import (
     Headline,
+    deciding,
     gas_state_word,
     headline,
     off_mask_word,
@@ -17,6 +18,7 @@ from app.theme import Verdict
 from app.words import Reader
 from app.words.figure_lines import FigureLines
 from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, NowFigure, ResponseFigure, SupportFigure
+from core.record.message import Message
 from tests.support.sample_ward import sample_ward
 
 
@@ -95,6 +97,17 @@ def test_a_pf_of_an_older_gas_says_its_own_time() -> None:
     f = EpisodeFigures("E", new.at, gases=(old, new), now=now)
     assert state_now(f, new, "mmHg", "UTC") == "P/F 107 mmHg at 05:25; not acidotic"
     assert state_now(replace(f, gases=(old,)), old, "mmHg", "UTC") == "P/F 107 mmHg; not acidotic"
+
+
+def test_beside_a_verdict_stands_what_decided_it() -> None:
+    ph = Message("response.compared", {"quantity": "ph", "direction": "inside noise"})
+    paco2 = Message("response.compared", {"quantity": "paco2", "direction": "down"})
+    early = Message("response.early", {"gas_at": 1})
+    lost = Message("response.gain_lost", {"quantity": "ph"})
+    assert deciding((ph, paco2, early)) == (paco2,)
+    assert deciding((ph, paco2, lost)) == (paco2, lost)
+    assert deciding((ph, early)) == (ph,)
+    assert deciding(()) == ()
 
 
 def test_a_low_pf_never_reads_as_resolved() -> None:

@@ -49,6 +49,12 @@ def test_the_sum_since_the_start_is_a_fact_of_its_own(told, label, against):
     assert found.index(f"since the start: {against}") == found.index("no clear change") + 1
 
 
+def test_a_verdict_stands_with_the_value_that_decided_it(told):
+    fact = next(f for f in told(bed("Bed 6")) if f[0] == "better")
+    assert any("PaCO2" in line and "down beyond measurement error" in line for line in fact), fact
+    assert not any("within measurement error" in line for line in fact), fact
+
+
 def test_hypoxaemia_comes_first_and_nothing_never_acidotic_is_resolved(told):
     assert titles(told(bed("Bay A 1")))[0] == "Hypoxaemic: P/F 107 mmHg; not acidotic"
     assert titles(told(bed("Bay B 5")))[0] == "not acidotic"
