@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableWidget, QTableWidgetItem, QWidget
 
+from app.copying import can_be_copied
 from app.formats import inert
 from app.intake_window.new_rows import new_rows
 from app.words import Reader, sentence
@@ -29,6 +30,7 @@ class FoundTable(QTableWidget):
 
     def __init__(self, reader: Reader, parent: QWidget | None = None) -> None:
         super().__init__(0, 4, parent)
+        can_be_copied(self)
         self._reader = reader
         self._refused = 0
         self._filling = False
