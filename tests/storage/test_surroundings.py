@@ -1,4 +1,4 @@
-"""What happens around a store: its file taken away, a clock stepping back, another window that writes all the time."""
+"""What happens around a store: its file taken away, a clock stepping back, another window that always writes."""
 
 from __future__ import annotations
 
