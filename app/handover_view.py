@@ -59,20 +59,38 @@ class HandoverView(QWidget):
         """Take another look or text size."""
         self._theme = theme
         if self._content is not None:
-            self.show_content(self._content)
+            self._write(self._content)
 
     def show_content(self, content: SheetContent) -> None:
         """Show a handover, keeping the place that was read."""
-        bar = self.text.verticalScrollBar()
-        place = bar.value() if self._content is not None else 0
+        if self._content is None:
+            self.text.verticalScrollBar().setValue(0)
         self._content = content
-        self.state.setText(self.tr("N and P turn to the next and previous episode; Tab and Enter follow a bed"))
+        self._fresh(self.tr("N and P turn to the next and previous episode; Tab and Enter follow a bed"), fresh=True)
+        self._write(content)
+
+    def _write(self, content: SheetContent) -> None:
+        bar = self.text.verticalScrollBar()
+        place = bar.value()
         self.text.setHtml(page_html(content, self._theme))
         bar.setValue(place)
 
+    def wait(self, text: str) -> None:
+        """Say that the handover is being gathered. What still stands below is the older one: it says so and
+        cannot be copied."""
+        old = self._content is not None
+        told = self.tr("{text} What stands below is the older one.").format(text=text) if old else text
+        self._fresh(told, fresh=False)
+
     def say(self, text: str) -> None:
-        """Say that the handover is being gathered, or why it cannot be."""
-        self.state.setText(text)
+        """Say why the handover cannot be gathered; an older one stays marked as old."""
+        self._fresh(text, fresh=False)
+
+    def _fresh(self, told: str, *, fresh: bool) -> None:
+        self.state.setText(told)
+        self.state.setProperty("role", "quiet" if fresh else "strong")
+        self.state.style().polish(self.state)
+        self.copy.setEnabled(fresh)
 
     def plain(self) -> str:
         """The page in plain words."""

@@ -60,6 +60,8 @@ class ClosingDeeds(WritingDeeds):
             self._dialog.accept()
             self._dialog.deleteLater()
             self._dialog = None
+        if self.window.pages is not None and self.window.pages.name == "handover":  # what it was compared with is another now
+            self.window.turner.fill("handover")
         self.window.say(self.tr("The handover is closed. Ctrl+Shift+O lists and opens closed ones."))
 
     def _not_closed(self, failure: Failure) -> None:

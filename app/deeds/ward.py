@@ -75,7 +75,7 @@ class WardDeeds(Doer):
         """Gather this shift and show it."""
         from app.operations import handover
 
-        self.pages.handover.say(self.tr("Gathering the shift..."))
+        self.pages.handover.wait(self.tr("Gathering the shift..."))
         self.model.ask(
             handover.prepare,
             self.handover_request(),

@@ -42,4 +42,5 @@ class CloseHandoverDialog(AskingDialog):
             self.refuse(self.tr("Both names are needed: who gives the handover and who takes it."))
             return
         self.go.setEnabled(False)
+        self.say(self.tr("Gathering the shift and printing it. This may take a while."))
         self._close(given, taken, str(self.paper.currentData()))

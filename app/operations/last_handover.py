@@ -60,6 +60,8 @@ class Handed:
     head: int | None = None
     name: str = ""
     closed_at: Instant | None = None
+    own_closed_at: Instant | None = None
+    """When a handover of this very shift was closed, the last time: it is not what is compared with."""
 
 
 def handed_before(store: Store, start: Instant, end: Instant, as_of: Instant, known_head: int | None) -> Handed:
@@ -67,17 +69,15 @@ def handed_before(store: Store, start: Instant, end: Instant, as_of: Instant, kn
 
     One of the same shift is no other handover: closing again, after a word was added, is compared as the first was.
     """
-    found = [
-        (facts, d)
-        for d in store.documents()
-        if d.kind == KIND and (known_head is None or d.seq <= known_head)
-        for facts in (facts_of(d),)
-        if facts.as_of < as_of and (facts.start, facts.end) != (start, end)
+    closed = [
+        (facts_of(d), d) for d in store.documents() if d.kind == KIND and (known_head is None or d.seq <= known_head)
     ]
+    own = max((d.recorded_at for f, d in closed if (f.start, f.end) == (start, end)), default=None)
+    found = [(f, d) for f, d in closed if f.as_of < as_of and (f.start, f.end) != (start, end)]
     if not found:
-        return Handed(start)
+        return Handed(start, own_closed_at=own)
     facts, document = max(found, key=lambda x: (x[0].as_of, x[1].seq))
-    return Handed(facts.as_of, facts.head, document.name, document.recorded_at)
+    return Handed(facts.as_of, facts.head, document.name, document.recorded_at, own)
 
 
 class Comparer:

@@ -29,10 +29,15 @@ def compared_with(handed: Handed, reader: Reader) -> str:
     at = formats.wall(handed.at, reader.zone)
     if handed.head is None:
         told = tr("No handover was closed before: what changed is told since the shift's start, {at}.")
-        return told.format(at=at)
-    return tr("What changed is told since the last closed handover, as of {at}: {name}.").format(
-        at=at, name=handed.name
-    )
+        if handed.own_closed_at is not None:
+            told = tr("No other shift was handed over before: what changed is told since the shift's start, {at}.")
+    else:
+        told = tr("What changed is told since the last closed handover, as of {at}: {name}.")
+    told = told.format(at=at, name=handed.name)
+    if handed.own_closed_at is not None:
+        own = tr("A handover of this shift was closed {wall}.")
+        told = f"{own.format(wall=formats.wall(handed.own_closed_at, reader.zone))} {told}"
+    return told
 
 
 def since_head(handed: Handed, reader: Reader) -> str:

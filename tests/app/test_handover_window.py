@@ -113,6 +113,40 @@ def test_a_printer_that_takes_nothing_is_told(qtbot, window):
     assert "Ctrl+P" in window.strip.plain()
 
 
+def test_an_older_page_says_that_it_is_old_until_the_new_one_is_there(qtbot, window):
+    window.show_page("handover")
+    view = window.pages.handover
+    assert "older" not in view.state.text()
+    assert not view.copy.isEnabled()
+    reading(qtbot, window)
+    assert view.copy.isEnabled()
+    window.show_page("handover")
+    assert "What stands below is the older one" in view.state.text()
+    assert not view.copy.isEnabled()
+    view.set_theme(view._theme)  # another look makes it no newer
+    assert "older" in view.state.text()
+    settled(qtbot, window)
+    assert "older" not in view.state.text()
+    assert view.copy.isEnabled()
+
+
+def test_a_handover_that_was_closed_is_what_the_page_compares_with_at_once(qtbot, window):
+    view = reading(qtbot, window)
+    assert "No handover was closed before" in view.plain()
+    window.doers.review.do_close_handover()
+    dialog = window.doers.review._dialog
+    dialog.submit()
+    assert "Both names" in dialog.wrong.text()
+    dialog.given.setText("AB")
+    dialog.taken.setText("CD")
+    dialog.submit()
+    assert dialog.wrong.text().startswith("Gathering the shift")
+    until(qtbot, lambda: "is closed" in window.strip.plain())
+    settled(qtbot, window)
+    assert "No handover was closed before" not in view.plain()
+    assert "A handover of this shift was closed 28-Mar-2026 05:30." in " ".join(view.plain().split())
+
+
 def test_paper_chosen_once_is_kept(qtbot, window, tmp_path):
     window.doers.review.do_close_handover()
     dialog = window.doers.review._dialog
