@@ -6,8 +6,9 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Signal
-from PySide6.QtWidgets import QComboBox, QHBoxLayout, QLabel, QSpinBox, QWidget
+from PySide6.QtWidgets import QBoxLayout, QComboBox, QHBoxLayout, QLabel, QSpinBox, QWidget
 
+from app.flow_row import FlowRow
 from app.intake_window.column_table import NoWheel
 from app.plain_label import plain_label
 from app.theme import Theme
@@ -17,6 +18,8 @@ if TYPE_CHECKING:
 
 _OFFERED = ("utf-8", "cp1252", "iso8859-15", "latin-1", "cp437", "utf-16")
 _MOST_LINES = 1_000
+LARGE = 1.25
+"""Size of text from which words and fields stand under each other."""
 
 
 class HowWritten(QWidget):
@@ -35,10 +38,13 @@ class HowWritten(QWidget):
         self.header.setButtonSymbols(QSpinBox.ButtonSymbols.NoButtons)
         self._still = NoWheel(self)
         self._labels: dict[QWidget, QLabel] = {}
-        row = QHBoxLayout(self)
-        row.setContentsMargins(0, 0, 0, 0)
-        row.setSpacing(theme.px(8))
-        row.addWidget(self.about, 1)
+        large = theme.text_scale > LARGE
+        whole = QBoxLayout(QBoxLayout.Direction.TopToBottom if large else QBoxLayout.Direction.LeftToRight, self)
+        whole.setContentsMargins(0, 0, 0, 0)
+        whole.setSpacing(theme.px(8))
+        whole.addWidget(self.about, 0 if large else 1)
+        row = FlowRow(None, theme.px(8)) if large else QHBoxLayout()
+        whole.addLayout(row)
         fields = ((self.tr("Text in"), self.encoding), (self.tr("Header on line"), self.header),
                   (self.tr("Sheet"), self.sheet))  # fmt: skip
         for word, field in fields:

@@ -21,7 +21,7 @@ from app.failure import Failure
 from app.fitted import FittedDialog, fit
 from app.intake_window.answers_form import AnswersForm
 from app.intake_window.column_table import ColumnTable
-from app.intake_window.how_written import HowWritten
+from app.intake_window.how_written import LARGE, HowWritten
 from app.intake_window.preview_table import PreviewTable
 from app.operations import mapping as operations
 from app.operations.intake import ReadRequest
@@ -98,16 +98,21 @@ class MappingDialog(FittedDialog):
         column.addWidget(self.asked)
         column.addLayout(self._foot())
 
-    def _head(self) -> QHBoxLayout:
-        head = QHBoxLayout()
-        head.addWidget(self.written, 1)
+    def _head(self) -> QVBoxLayout:
+        """How it is written and which mapping; under each other where text is large."""
+        whole, head = QVBoxLayout(), QHBoxLayout()
+        if self._theme.text_scale > LARGE:
+            whole.addWidget(self.written)
+        else:
+            head.addWidget(self.written, 1)
+        whole.addLayout(head)
         self._kept_label = QLabel(self.tr("Mapping"))
         self._kept_label.setProperty("role", "quiet")
         self._kept_label.setBuddy(self.kept)
         self.kept.setMinimumContentsLength(14)
         head.addWidget(self._kept_label)
-        head.addWidget(self.kept)
-        return head
+        head.addWidget(self.kept, 1 if self._theme.text_scale > LARGE else 0)
+        return whole
 
     def _halves(self) -> QHBoxLayout:
         halves = QHBoxLayout()
@@ -116,7 +121,7 @@ class MappingDialog(FittedDialog):
         side.setWidget(self.answers)
         side.setWidgetResizable(True)
         side.setFocusPolicy(Qt.FocusPolicy.NoFocus)  # Tab goes to what is inside and brings it into view
-        side.setFixedWidth(self._theme.px(400))
+        side.setFixedWidth(min(self._theme.px(400), 680))
         halves.addWidget(self.columns, 1)
         halves.addWidget(side)
         return halves
