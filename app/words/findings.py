@@ -32,7 +32,8 @@ GAS: Final[dict[str, str]] = {
         "(at most {within:trim} apart is accepted).",
     "gas.needs_arterial": "needs an arterial sample (this one is {site})",
     "gas.kpa_suspected":
-        "PaCO2 {value:trim} mmHg is hardly possible. {value:trim} kPa would be {mmHg:0} mmHg: which unit was meant?",
+        "{channel:name} {value:trim} mmHg is hardly possible. "
+        "{value:trim} kPa would be {mmHg:0} mmHg: which unit was meant?",
     "gas.negative_gradient":
         "The A-a gradient would be {aa:0} mmHg, which cannot be: FiO2 {fio2:fraction} or a pressure is wrong.",
     "gas.not_metabolic": "only of a metabolic disturbance",

@@ -86,6 +86,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "line.oxygen_unclear": "Oxygen {value} could be a flow or an FiO2. Say which: {accepted}.",
     "line.ps_means_ipap": "Pressure support {ps} over EPAP {epap:trim} is IPAP {ipap:trim} cmH2O.",
     "line.site_assumed": "No sample site is named: taken as arterial, unless this gas has one already.",
+    "line.time_form": "The time '{value}' is not written as the line takes it. Accepted: {accepted}.",
     "line.too_long": "The line is too long. Accepted: at most {accepted}.",
     "line.twice": "{channel:name} stands twice on the line. Accepted: {accepted}.",
     "line.unconfirmed":
@@ -147,6 +148,6 @@ TEMPLATES: Final[dict[str, str]] = {
     "value.missing": "{channel:name} has no value. Accepted: {accepted}.",
     "value.not_a_choice": "{channel:name} '{value}' is not one of its choices. Accepted: {accepted}.",
     "value.not_a_number": "{channel:name} '{value}' is no number. Accepted: {accepted}.",
-    "value.past_hard_limit": "{channel:name} {value} is not possible. Accepted: {accepted}.",
+    "value.past_hard_limit": "{channel:name} {value} is not possible[[ ({meant} would be)]]. Accepted: {accepted}.",
     "value.too_long": "The text of {channel:name} has {length} characters; at most {accepted} are accepted.",
 }  # fmt: skip

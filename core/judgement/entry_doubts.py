@@ -54,9 +54,12 @@ def gas_doubts(
 
 
 def _kilopascals(readings: Sequence[Reading]) -> list[Message]:
-    """A PaCO2 this low in mmHg is hardly compatible with life: it is likelier to be a figure in kPa."""
+    """A PaCO2 or PaO2 this low in mmHg is hardly compatible with life: it is likelier to be a figure in kPa."""
     return [
-        Message("gas.kpa_suspected", {"value": r.number, "mmHg": r.number * MMHG_PER_KPA})
+        Message("gas.kpa_suspected", {"channel": r.channel.key, "value": r.number, "mmHg": r.number * MMHG_PER_KPA})
         for r in readings
-        if r.channel.key == "paco2" and r.raw_unit == "mmHg" and r.number is not None and r.number < LEAST_MMHG
+        if r.channel.key in ("paco2", "pao2")
+        and r.raw_unit == "mmHg"
+        and r.number is not None
+        and r.number < LEAST_MMHG
     ]

@@ -95,7 +95,9 @@ def _read_number(channel: Channel, text: str, unit_text: str) -> Reading:
     number = unit.to_canonical(typed)
     if unit.name == "%" and channel.unit == "fraction":
         number = typed / 100.0  # exact where x 0.01 is not: 35 % is 0.35
-    check_hard(channel, number, f"{text} {written(unit.name)}".strip())
+    check_hard(
+        channel, number, f"{text} {written(unit.name)}".strip(), unit.name, _meant(channel, typed, text, unit.name)
+    )
     return Reading(channel, number, None, text, unit.name, decimals, soft_doubts(channel, number))
 
 
@@ -105,8 +107,18 @@ def _implied_unit(channel: Channel, typed: float) -> str:
     return channel.unit
 
 
-def check_hard(channel: Channel, number: float, shown: str) -> None:
-    """Refuse a number outside the channel's hard limits.
+def _meant(channel: Channel, typed: float, text: str, unit: str) -> str | None:
+    """The same figure in another unit of the channel, where that would be an ordinary value; None elsewhere."""
+    low, high = channel.soft or channel.hard or (0.0, 0.0)
+    for other in channel.units:
+        if other.name != unit and written(other.name) and low <= other.to_canonical(typed) <= high:
+            return f"{text} {written(other.name)}"
+    return None
+
+
+def check_hard(channel: Channel, number: float, shown: str, unit: str = "", meant: str | None = None) -> None:
+    """Refuse a number outside the channel's hard limits, which are told in the unit that was typed. `meant`: the
+    figure in another unit, where that is likelier.
 
     Raises:
         RecordError: `value.past_hard_limit` with the limits.
@@ -118,8 +130,8 @@ def check_hard(channel: Channel, number: float, shown: str) -> None:
     if not low - slack <= number <= high + slack:
         raise refuse(
             "value.past_hard_limit",
-            channel=channel.key, value=shown, low=low, high=high, unit=channel.unit,
-            accepted=_accepted(channel),
+            channel=channel.key, value=shown, low=low, high=high, unit=channel.unit, meant=meant,
+            accepted=_accepted(channel, unit),
         )  # fmt: skip
 
 
@@ -138,15 +150,24 @@ def soft_doubts(channel: Channel, number: float) -> tuple[Message, ...]:
     return (Message("doubt.unusual", values),)
 
 
-def _accepted(channel: Channel) -> str:
+def _accepted(channel: Channel, typed: str = "") -> str:
     if channel.kind is Kind.CHOICE:
         return " | ".join(channel.choices)
     if channel.kind is Kind.INSTANT:
         return "ISO 8601 with offset, e.g. 2026-03-28T02:10+00:00"
     if channel.kind is Kind.NUMBER:
-        others = [written(unit.name) for unit in channel.units if unit.name != channel.unit]
-        units = f", or in {' or '.join(others)}" if others else ""
-        unit, hard = written(channel.unit), channel.hard
-        span = f", {hard[0]:g} to {hard[1]:g} {unit}".rstrip() if hard else ""
-        return f"a number{span}{units}"
+        unit = next((u for u in channel.units if u.name == typed), None)
+        shown = typed if unit is not None else channel.unit
+        others = [_named(u.name) for u in channel.units if u.name != shown]
+        units = f", or {' or '.join(others)}" if others else ""
+        ends = (
+            () if channel.hard is None else channel.hard if unit is None else map(unit.from_canonical, channel.hard)
+        )
+        low_high = " to ".join(f"{end:.4g}" for end in sorted(ends))
+        return f"a number{f', {low_high}' if low_high else ''} {written(shown)}".rstrip() + units
     return "text"
+
+
+def _named(unit: str) -> str:
+    """A unit as another way to say a figure: in kPa, as a fraction."""
+    return f"in {written(unit)}" if written(unit) else f"as a {unit}" if unit == "fraction" else f"as {unit}"

@@ -80,13 +80,27 @@ def test_no_text_raises_anything_but_a_refusal_in_words(text, c, unit):
 @pytest.mark.parametrize(
     ("key", "text", "said"),
     [
-        ("temp", "99", "Temperature 99 °C is not possible. Accepted: a number, 25 to 45 °C, or in °F."),
+        (
+            "temp",
+            "99",
+            "Temperature 99 °C is not possible (99 °F would be). Accepted: a number, 25 to 45 °C, or in °F.",
+        ),
         ("dyspnoea", "14", "Dyspnoea 14 is not possible. Accepted: a number, 0 to 10."),
         ("ph", "9", "pH 9 is not possible. Accepted: a number, 6.5 to 8, or in nmol/L."),
-        ("fio2", "300", "FiO2 300 % is not possible. Accepted: a number, 0.21 to 1, or in %."),
+        ("fio2", "300", "FiO2 300 % is not possible. Accepted: a number, 21 to 100 %, or as a fraction."),
     ],
 )
 def test_a_refusal_writes_units_as_people_do(key, text, said):
     with pytest.raises(RecordError) as refused:
         read_value(channel(key), text)
     assert sentence(refused.value.message) == said
+
+
+def test_a_refusal_tells_its_bounds_in_the_unit_that_was_typed_and_which_other_was_likelier_meant():
+    with pytest.raises(RecordError) as refused:
+        read_value(channel("paco2"), "62", "kPa")
+    said = sentence(refused.value.message)
+    assert (
+        said
+        == "PaCO2 62 kPa is not possible (62 mmHg would be). Accepted: a number, 0.6666 to 33.33 kPa, or in mmHg."
+    )
