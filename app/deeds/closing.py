@@ -60,7 +60,7 @@ class ClosingDeeds(WritingDeeds):
             self._dialog.accept()
             self._dialog.deleteLater()
             self._dialog = None
-        if self.window.pages is not None and self.window.pages.name == "handover":  # what it was compared with is another now
+        if self.window.pages is not None and self.window.pages.name == "handover":  # it tells what was closed
             self.window.turner.fill("handover")
         self.window.say(self.tr("The handover is closed. Ctrl+Shift+O lists and opens closed ones."))
 

@@ -40,6 +40,18 @@ _NUMBER = re.compile(r"[+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+)")
 _VALUE = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))(.*)")
 _PAIR = re.compile(r"(\d+(?:[.,]\d+)?)/(\d+(?:[.,]\d+)?)")
 _MODE_WORDS = {"st": "BPAP-ST", "hfn": "high-flow nasal"} | {m.casefold(): m for m in MODES}
+TIME_FORMS = "14:20 | yesterday 23:40 | 20m ago | 1h ago | now"
+_LIKE_A_TIME = re.compile(
+    r"\d{1,2}[.h]\d{2}|\d{3,4}|\d{1,2}:\d{2}:.*|\d{4}-\d{2}.*|\d{1,2}[-./][A-Za-z]{3}.*|\d{1,2}[./]\d{1,2}[./].*",
+    re.ASCII,
+)
+_INSTEAD = {
+    "gas": "ph 7.24 paco2 62 pao2 58, or the form of a blood gas (F11)",
+    "abg": "ph 7.24 paco2 62 pao2 58, or the form of a blood gas (F11)",
+    "bed": "label Bed 12, or the form of the patient's facts (Shift+F11)",
+    "ceiling": "ceiling of care no intubation, or the form of the patient's facts (Shift+F11)",
+}
+"""What people type first, and how it is said on the line."""
 OXYGEN_FORMS = "fio2 40% | flow 4"
 LEAST_PERCENT = 21.0
 """No flow of a mask or a wall reaches this in L/min but high-flow oxygen, which is set by FiO2 as well."""
@@ -191,7 +203,9 @@ class _Items:
         elif _NUMBER.fullmatch(word) and not self.readings:
             self._bare_numbers()
         else:
-            raise refuse("line.word_unknown", word=word, accepted=EXAMPLE)
+            if not self.readings and _LIKE_A_TIME.fullmatch(word):
+                raise refuse("line.time_form", value=word, accepted=TIME_FORMS)
+            raise refuse("line.word_unknown", word=word, accepted=_INSTEAD.get(low, EXAMPLE))
 
     def _channel(self) -> Channel | None:
         """The channel named here, two words first; leaves the reader behind the name."""
@@ -262,6 +276,8 @@ class _Items:
     def _bare_numbers(self) -> None:
         """`16 6 35`: two bare numbers are IPAP and EPAP, a third FiO2. One alone says nothing."""
         if not self._number_follows(1):
+            if self.i + 1 < len(self.words) and _LIKE_A_TIME.fullmatch(self.words[self.i]):
+                raise refuse("line.time_form", value=self.words[self.i], accepted=TIME_FORMS)
             raise refuse("line.number_alone", value=self.words[self.i], accepted=EXAMPLE)
         self._add("ipap", self.words[self.i])
         self._add("epap", self.words[self.i + 1])

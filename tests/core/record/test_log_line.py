@@ -119,6 +119,8 @@ def test_the_settings_in_force_are_those_of_the_lines_own_moment():
         ("ps 10 ipap 15", BILEVEL, "line.twice"), ("mode bilevel", BILEVEL, "value.not_a_choice"),
         ("o2 4", BILEVEL, "line.oxygen_unclear"), ("o2", BILEVEL, "line.value_missing"),
         ("02:40 rr 20", BILEVEL, "time.not_yet"),
+        ("03.00 rr 20", BILEVEL, "line.time_form"), ("0300 rr 20", BILEVEL, "line.time_form"),
+        ("27-Mar 23:00 rr 20", BILEVEL, "line.time_form"), ("2026-03-28T03:00 rr 20", BILEVEL, "line.time_form"),
         ("25:10 rr 20", BILEVEL, "time.unreadable"), ("note", BILEVEL, None),
     ],
 )  # fmt: skip
@@ -129,6 +131,20 @@ def test_what_cannot_be_is_refused_by_name(text, in_force, key):
     with pytest.raises(RecordError) as refused:
         read(text, in_force)
     assert refused.value.message.key == key
+
+
+@pytest.mark.parametrize(
+    ("text", "instead"),
+    [
+        ("gas 7,24 62 58", "ph 7.24 paco2 62"),
+        ("bed 12", "label Bed 12"),
+        ("ceiling no intubation", "ceiling of care"),
+    ],
+)
+def test_what_people_type_first_is_told_how_it_is_said(text, instead):
+    with pytest.raises(RecordError) as refused:
+        read(text)
+    assert instead in refused.value.message.values["accepted"]
 
 
 def test_soft_limits_become_questions_and_an_unconfirmed_one_a_doubt():
