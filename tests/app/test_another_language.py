@@ -37,7 +37,8 @@ LEFT_OUT = {
 
 class Marker(QTranslator):
     def translate(self, context, source, disambiguation=None, n=-1):  # noqa: ARG002
-        return f"«{source}»" if source and not context.startswith(("QPlatform", "QShortcut", "QKeySequence")) else ""
+        keys = context in ("QShortcut", "QKeySequence")  # names of keys: what they mean hangs on them
+        return source if keys else f"«{source}»"
 
     def isEmpty(self):
         return False
