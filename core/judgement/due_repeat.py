@@ -107,7 +107,7 @@ def _after_poor(seen: Observed, rule: DueRule, gas: GasFigure, later: GasFigure 
 
 
 def grave(seen: Observed, gas: GasFigure) -> str | None:
-    """Why a gas on support must be repeated soon: severe, doubtful, worse, worse since start, gain lost, not better."""
+    """Why a gas on support must be repeated soon: severe, doubtful, worse (since start), gain lost, not better."""
     if gas.state == "severe":
         return "severe"
     if gas.in_doubt and gas.ph is not None:
