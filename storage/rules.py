@@ -65,11 +65,11 @@ def check_entry(new: NewEntry, lookup: Lookup) -> None:
 def _check_texts(new: NewEntry) -> None:
     for name in ("episode", "words", "raw", "raw_unit", "zone", "by", "note", "doubt", "reason", "source"):
         text = getattr(new, name)
-        if text is None:
+        if not text:
             continue
         if len(text) > MAX_TEXT:
             raise refuse("entry.text_too_long", field=name, length=len(text), accepted=MAX_TEXT)
-        if "\x00" in text or not _encodable(text):
+        if "\x00" in text or not (text.isascii() or _encodable(text)):
             raise refuse("entry.text_unreadable", field=name, accepted="Unicode text without NUL")
 
 
