@@ -110,6 +110,9 @@ def _effects(record: Episode, at: Instant, readings: tuple[Reading, ...], reader
     before = SettingsInForce(record).at(at)
     after = with_readings(before, readings)
     told = effect_of_change(before, after, own_rate(record, at))
+    settings = [r for r in readings if r.channel.key in SHOWN]
+    if settings and all(getattr(before, r.channel.key) == r.value for r in settings):
+        return [translate("strip", "Nothing changes: it is set like this already.")]
     words = [sentence(m, reader) for m in told]
     if not any(m.key.startswith("effect.pressure_support") or "support" in m.key for m in told) and _has_support(
         before.pressure_support, after.pressure_support

@@ -27,6 +27,11 @@ def test_settings_with_support_before_and_after():
     assert words.questions == ()
 
 
+def test_what_is_set_like_this_already_is_said_to_change_nothing():
+    assert said("20/6 35").effects == ("Nothing changes: it is set like this already.",)
+    assert not any("Nothing changes" in e for e in (*said("22/6 40").effects, *said("rr 20").effects))
+
+
 def test_a_raised_epap_alone_says_that_it_lowers_support():
     expected = "Raising EPAP alone lowers pressure support: EPAP 6 to 8, pressure support 14 to 12 cmH2O."
     assert expected in said("epap 8").effects
