@@ -103,6 +103,8 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
         os.replace(unfinished, new)
         keys.sync_folder(new.parent)
         return Message("restore.not_checked", {"path": source.name}) if encrypted and passphrase is None else None
+    except StoreError as error:
+        raise _of_the_backup(error, source, unfinished) from error
     except driver_errors() as error:
         told = translated(error, source)
         raise translated(error, new) if told.message.key == "store.disk_full" else told from error
@@ -112,6 +114,14 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
         opening.remove(unfinished)
         if not new.exists():
             keys.envelope_path(new).unlink(missing_ok=True)
+
+
+def _of_the_backup(error: StoreError, source: Path, unfinished: Path) -> StoreError:
+    """What is wrong with the copy is wrong with the file that was given: that one is named."""
+    named, values = {unfinished.name, unfinished.name.removesuffix(".unfinished")}, dict(error.message.values)
+    if error.message.key != "store.exists" and values.get("path") in named:
+        values["path"] = source.name
+    return StoreError(Message(error.message.key, values))
 
 
 def _journal_of(store: Path) -> int:

@@ -102,8 +102,9 @@ def test_a_damaged_backup_of_a_plain_store_is_not_restored(store: Store, tmp_pat
     data = bytearray((tmp_path / "copy.luff").read_bytes())
     data[4096 * 5 : 4096 * 9] = b"\xff" * 4096 * 4
     (tmp_path / "copy.luff").write_bytes(data)
-    with pytest.raises(StoreError, match=r"store.damaged"):
+    with pytest.raises(StoreError, match=r"store.damaged") as caught:
         Store.restore(tmp_path / "copy.luff", tmp_path / "new.luff")
+    assert caught.value.message.values["path"] == "copy.luff"  # the file that was given, not the one to be made
     assert not (tmp_path / "new.luff").exists()
 
 
@@ -122,6 +123,7 @@ def test_a_backup_that_says_something_else_is_not_restored(
     with pytest.raises(StoreError) as caught:
         Store.restore(tmp_path / "copy.luff", tmp_path / "new.luff", passphrase=secret(store))
     assert caught.value.message.values["detail"] == "verify.chain"
+    assert caught.value.message.values["path"] == "copy.luff"
     assert not (tmp_path / "new.luff").exists()
 
 
