@@ -108,6 +108,7 @@ def _recording(command: Command) -> None:
     log.add_argument("line")
     log.add_argument("--yes", action="store_true", help="answer yes to the line's questions")
     log.add_argument("--new", action="store_true", help="begin the episode if the store does not know it")
+    log.add_argument("--at", type=moment, metavar="T", help="its moment, for a line that names no time")
     correct = command("correct", "correct, withdraw or move an entry; the old one stays visible")
     correct.add_argument("episode")
     correct.add_argument("entry", nargs="?", help="an entry's id or its beginning; left out: list the entries")

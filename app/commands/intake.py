@@ -21,6 +21,11 @@ if TYPE_CHECKING:
     from storage.store import Store
 
 _DOUBTS_SHOWN = 20
+_HINTS = {
+    "patient.unknown": "Say whose results these are: luffmark intake --patient ID=EPISODE {path}",
+    "patient.no_identifier": "Say whose results these are: luffmark intake --episode EPISODE {path}",
+}
+"""What to type next, by what was refused."""
 _ATTEMPTS = 3
 """Readings of one file, where others keep recording of its episodes meanwhile."""
 
@@ -136,6 +141,8 @@ def _tell_refused(path: Path, intake: Intake, reader: Reader) -> None:
     hidden = intake.refused_rows - len({r.line for r in intake.refusals})
     if hidden > 0:
         print(f"  ... and {hidden} more row(s)", file=sys.stderr)
+    for key in dict.fromkeys(r.message.key for r in intake.refusals if r.message.key in _HINTS):
+        print(f"  {_HINTS[key].format(path=path)}", file=sys.stderr)
 
 
 def _row(found: Refusal | Doubt, reader: Reader) -> str:

@@ -19,7 +19,7 @@ from core.record.reading import Reading
 def run(context: Context, args: argparse.Namespace) -> int:
     """Record the line and say what was recorded. A line that asks something is refused until --yes."""
     request = operations.LineRequest(
-        args.episode, args.line, context.local_zone(), args.yes, args.new, context.gas_unit
+        args.episode, args.line, context.local_zone(), args.yes, args.new, context.gas_unit, args.at
     )
     reader = context.reader()
     opened = context.open_or_create() if args.new else context.open()

@@ -20,8 +20,9 @@ def run(context: Context, args: argparse.Namespace) -> int:
     with context.open(read_only=not args.withdraw) as store:
         found, zone = operations.taken(store, context.by, context.now(), None).value, context.local_zone()
         if not args.withdraw:
-            text = "\n".join(_line(s, zone) for s in found) or "No file was taken in."
-            context.answer(text, {"taken": [_json(s) for s in found]})
+            gone = {str(s.facts.get("of", "")) for s in found if s.kind == "withdrawal"}
+            text = "\n".join(_line(s, zone, s.id in gone) for s in found) or "No file was taken in."
+            context.answer(text, {"taken": [{**_json(s), "withdrawn": s.id in gone} for s in found]})
             return 0
         meant = [s for s in found if s.id.startswith(args.withdraw)]
         if len(meant) != 1:
@@ -40,10 +41,11 @@ def run(context: Context, args: argparse.Namespace) -> int:
 KINDS = {"log_csv": "log file", "table": "table", "hl7v2": "HL7 v2", "fhir": "FHIR", "withdrawal": "withdrawal"}
 
 
-def _line(s: TakenSource, zone: str) -> str:
+def _line(s: TakenSource, zone: str, is_withdrawn: bool) -> str:
     entries, samples = counted(s.entries, "entry", "entries"), counted(s.samples, "device sample", "device samples")
     kind = KINDS.get(s.kind, s.kind)
-    return f"{s.id[:8]}  {wall(s.recorded_at, zone)}  {s.by or 'not named'}  {kind}  {s.name}: {entries}, {samples}"
+    brought = f"{entries}, {samples}" + (" (withdrawn)" if is_withdrawn else "")
+    return f"{s.id[:8]}  {wall(s.recorded_at, zone)}  {s.by or 'not named'}  {kind}  {s.name}: {brought}"
 
 
 def _json(s: TakenSource) -> dict[str, Any]:

@@ -33,6 +33,8 @@ class LineRequest:
     confirmed: bool = False
     new: bool = False
     gas_unit: str = "mmHg"
+    at: Instant | None = None
+    """The moment of a line that names no time of its own; now where left out."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,7 +72,10 @@ def log_line(store: Store, who: str, now: Instant, request: LineRequest) -> Outc
 def _previewed(store: Store, now: Instant, request: LineRequest) -> Preview:
     episode = _episode(store, request.episode, new=request.new)
     settings = SettingsInForce(episode)
-    line = read_line(request.line, now=now, zone=request.zone, in_force=settings.at, gas_unit=request.gas_unit)
+    said = now if request.at is None else request.at
+    line = read_line(request.line, now=said, zone=request.zone, in_force=settings.at, gas_unit=request.gas_unit)
+    if request.at is not None and line.time_typed:
+        raise refuse("line.time_twice", accepted="a time on the line or a moment beside it")
     check_not_future(line.at, now)
     check_target(episode, line.at, line.readings)
     return Preview(episode.key, episode.label, line, questions(store, episode, line.at, line.readings))

@@ -111,7 +111,7 @@ def _read_table(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
         mapping = recognised(table.header, kept_mappings(store))
     if mapping is None:
         raise refuse("mapping.none_fits", path=wanted.path.name, columns=" | ".join(table.header)[:300],
-                     accepted="a mapping, by name or made in the window")  # fmt: skip
+                     accepted="a mapping, by name, or made in the window or by luffmark mapping propose")  # fmt: skip
     if wanted.leak_definition:
         mapping = replace(mapping, leak_definition=wanted.leak_definition)
     if wanted.zone and not mapping.time.zone:

@@ -87,6 +87,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "line.ps_means_ipap": "Pressure support {ps} over EPAP {epap:trim} is IPAP {ipap:trim} cmH2O.",
     "line.site_assumed": "No sample site is named: taken as arterial, unless this gas has one already.",
     "line.time_form": "The time '{value}' is not written as the line takes it. Accepted: {accepted}.",
+    "line.time_twice": "The line has a time of its own, and another moment is given beside it. Accepted: {accepted}.",
     "line.too_long": "The line is too long. Accepted: at most {accepted}.",
     "line.twice": "{channel:name} stands twice on the line. Accepted: {accepted}.",
     "line.unconfirmed":

@@ -189,6 +189,15 @@ def test_log_asks_before_an_unusual_value(filled: Any) -> None:
     assert filled("log", "N4", "rr 55", "--yes")[0] == DONE
 
 
+def test_a_line_may_be_dated_to_any_day_before(filled: Any) -> None:
+    code, out, _ = filled("log", "N4", "rr 24", "--at", "2026-03-27T21:40Z")
+    assert code == DONE
+    assert "27-Mar-2026 21:40" in out
+    code, _, err = filled("log", "N4", "21:30 rr 25", "--at", "2026-03-27T21:40Z")
+    assert code == REFUSED
+    assert "a time of its own" in err
+
+
 @pytest.mark.parametrize("line", ["", "rr", "16", "quux 5", "ipap 4 epap 8", "ph 9"])
 def test_log_refuses_in_one_line(filled: Any, line: str) -> None:
     code, out, err = filled("log", "N4", line)

@@ -96,9 +96,24 @@ def test_a_file_is_listed_withdrawn_and_may_come_again(run: Any, tmp_path: Path)
     assert re.search(rf"{moment}  \S+  HL7 v2  .*: 5 entries, 0 device samples", listed), listed
     code, out, _ = run("taken", "--withdraw", taken["id"][:8])
     assert (code, "5 entries" in out) == (DONE, True)
+    assert "5 entries, 0 device samples (withdrawn)" in run("taken")[1]
+    assert [t["withdrawn"] for t in json.loads(run("taken", "--json")[1])["taken"]] == [True, False]
     assert run("taken", "--withdraw", "zzzz")[0] == REFUSED
     assert "5 entries" in run("intake", path, "--episode", "E1")[1]
     assert run("verify")[0] == DONE
+
+
+def test_a_refusal_says_what_to_type_next(run: Any, tmp_path: Path) -> None:
+    path = tmp_path / "a.hl7"
+    path.write_text(message(gas()))
+    code, _, err = run("intake", path)
+    assert code != DONE
+    assert f"luffmark intake --patient ID=EPISODE {path}" in err
+    table = tmp_path / "t.csv"
+    table.write_text("When;Saettigung\n2026-03-27 20:00;91\n", "utf-8")
+    code, _, err = run("intake", table)
+    assert code != DONE
+    assert "mapping propose" in err
 
 
 def test_a_device_trend_with_its_answers(run: Any, tmp_path: Path) -> None:
