@@ -13,7 +13,7 @@ EXPECTED = {
     "close-due", "problem-report", "export", "files-taken", "people", "archive", "backups", "restore", "salvage",
     "key-file", "close-handover", "closed-handovers", "print-preview", "take-in", "mapping", "policy-file",
     "find-action", "sign-in", "first-lead", "pin-by-code", "new-store", "open-store", "change-passphrase",
-    "recovery-code", "came-later", "locked",
+    "recovery-code", "second-passphrase", "device-span", "came-later", "locked",
 }  # fmt: skip
 
 
