@@ -13,6 +13,7 @@ from PySide6.QtCore import QCoreApplication
 from app.certainty import certainty_words
 from app.figure_rows import doubts_of
 from app.finding_names import due_name, lever_name, marker_name
+from app.flag_spans import with_gaps
 from app.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
 from app.headline import lost_gain, verdict_with_loss
 from app.lever_words import lever_sentence, lever_standing, without_decides
@@ -87,7 +88,8 @@ class Explainer:
 
     def flag(self, flag: FlagFigure) -> Explanation:
         """A flag: its evidence, the marker's limits, since when, who has seen it."""
-        evidence = tuple(sentence(e, self.reader) for e in flag.evidence)
+        told = (*(sentence(e, self.reader) for e in flag.evidence), with_gaps(flag, self.reader))
+        evidence = tuple(part for part in told if part)
         notes = (
             translate("explain", "Strength: {tier}.").format(tier=tier_word(Tier(flag.tier))),
             translate("explain", "Met since {time}.").format(time=wall(flag.since, self.reader.zone)),

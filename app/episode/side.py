@@ -20,6 +20,7 @@ from app.figure_leak import mask_rows
 from app.figure_rows import RowMaker
 from app.figure_values import input_name
 from app.finding_names import due_name, lever_name, marker_name
+from app.flag_spans import with_gaps
 from app.formats import clock, hours, minutes, opened, since, trimmed
 from app.headline import (
     Headline,
@@ -293,7 +294,8 @@ class _Facts:
         return replace(explanation, notes=(*explanation.notes, *others))
 
     def _evidence(self, flag: FlagFigure) -> str:
-        return " ".join(sentence(e, self.reader) for e in flag.evidence)
+        told = [sentence(e, self.reader) for e in flag.evidence]
+        return " ".join(part for part in (*told, with_gaps(flag, self.reader)) if part)
 
     def _source(self, flag: FlagFigure) -> str:
         return f"{opened(tier_word(Tier(flag.tier)))}. {flag.source} ({certainty_words(flag)})"
@@ -369,4 +371,5 @@ class _Facts:
             yield translate("side", "outside its population")
         if score.at is not None:
             yield f"{clock(score.at, self.reader.zone)}, {since(score.at, self.f.as_of)}"
-        yield from (sentence(m, self.reader) for m in score.reasons.values())
+        said = (m for m in score.reasons.values() if not (score.missing and m.key == "score.inputs_missing"))
+        yield from (sentence(m, self.reader) for m in said)

@@ -294,7 +294,10 @@ class FigureLines:
 
     def evidence(self, f: FlagFigure) -> str:
         """Why the flag is met."""
-        return " ".join(sentence(m, self.reader) for m in f.evidence)
+        from app.flag_spans import with_gaps
+
+        told = (*(sentence(m, self.reader) for m in f.evidence), with_gaps(f, self.reader))
+        return " ".join(part for part in told if part)
 
     def certainty(self, f: FlagFigure) -> str:
         """Where a marker comes from and how sure that is."""

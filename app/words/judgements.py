@@ -46,7 +46,7 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.support": "{quantity:name}[[ {value:q}]][[!value| not set, one pressure]], "
         "{relation} {limit:q}.",
     "evidence.support_ends": "Support ends at {at:time}.",
-    "evidence.sustained": "{quantity:name} {relation} {limit:q} for {minutes:minutes} since {since:time}"
+    "evidence.sustained": "{quantity:name} {relation} {limit:q} for {minutes:minutes} in all since {since:time}"
         "[[, median {median:q}]].",
     "evidence.think_of": "Think of {what}.",
     "evidence.timing": "{minutes:minutes} after {anchor:pick start=the start;change=the change;"

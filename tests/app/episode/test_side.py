@@ -11,6 +11,7 @@ from app.theme import LIGHT
 from app.words import Reader
 from core.judgement.policy import shipped_policy
 from core.judgement.shapes import EpisodeFigures
+from core.record.message import Message
 from tests.support.sample_ward import sample_ward
 
 READER = Reader("Europe/London", "mmHg")
@@ -53,6 +54,17 @@ def test_a_verdict_stands_with_the_value_that_decided_it(told):
     fact = next(f for f in told(bed("Bed 6")) if f[0] == "better")
     assert any("PaCO2" in line and "down beyond measurement error" in line for line in fact), fact
     assert not any("within measurement error" in line for line in fact), fact
+
+
+def test_what_a_score_lacks_is_said_once(qtbot):
+    f = bed("Bay A 1")
+    why = {"points": Message("score.inputs_missing", {"missing": "gcs"})}
+    short = replace(f, scores={"hacor": replace(f.scores["hacor"], missing=("gcs",), reasons=why)})
+    column = SideColumn(LIGHT)
+    qtbot.addWidget(column)
+    column.show_figures(short, shipped_policy(), READER)
+    fact = next(f for f in column.facts() if f.findChildren(QLabel) and f.findChildren(QLabel)[0].text() == "HACOR")
+    assert " ".join(label.text() for label in fact.findChildren(QLabel)).count("missing: ") == 1
 
 
 def test_hypoxaemia_comes_first_and_nothing_never_acidotic_is_resolved(told):
