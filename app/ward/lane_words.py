@@ -40,6 +40,7 @@ from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due
 from app.words import Reader, sentence
+from app.words.short_forms import ph_as_reported
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, JudgedGas, ResponseFigure
 from core.record.instant import MINUTE, Instant
 
@@ -129,9 +130,12 @@ class LaneWords:
         if off := off_mask_word(f, self.zone):  # a state that is none of acidosis is left to its shape
             acid = gas is not None and gas.state in ("severe", "acidotic")
             return f"{off}; {gas_state_word(f, gas)}" if gas is not None and acid else off
-        return (
-            state_now(f, gas, self.gas_unit, self.zone) if gas is not None else translate("ward", "no gas logged yet")
-        )
+        if gas is None:
+            return translate("ward", "no gas logged yet")
+        told = state_now(f, gas, self.gas_unit, self.zone)
+        if gas.state in ("severe", "acidotic") and not gas.off_support and (ph := ph_as_reported(gas)):
+            return translate("ward", "{state}, pH {ph}").format(state=told, ph=ph)
+        return told
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")

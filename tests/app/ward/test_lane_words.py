@@ -89,6 +89,16 @@ def test_an_open_window_is_drawn_and_a_judged_one_is_not():
     assert items(lane_of(improving()), LaneKind.WINDOW) == []
 
 
+def test_an_acidosis_stands_with_its_ph() -> None:
+    bed = failing()
+    gas = bed.figures.gases[-1]
+    lane = WORDS.lane(OnWard(bed.figures, course_of(bed.record, NOW)), first=False)
+    assert gas.state == "severe"
+    assert lane.state_word == f"severe, pH {gas.ph:.2f}"
+    calm = replace(bed.figures, gases=(replace(gas, state="resolved"),))
+    assert "pH" not in WORDS.lane(OnWard(calm, course_of(bed.record, NOW)), first=False).state_word
+
+
 def test_off_the_mask_stands_in_the_place_of_the_state_and_dims_the_settings():
     bed = failing()
     off = replace(bed.figures, now=NowFigure(off_mask_since=at("05:21")))
