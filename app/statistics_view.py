@@ -134,10 +134,14 @@ class StatisticsView(QWidget):
         """Show the figures of a span."""
         self.found, self._reader = found, reader
         self.said.setText(span_words(found.start, found.end, reader.zone))
-        self.start.setDateTime(_shown(found.start, reader.zone))
-        self.end.setDateTime(_shown(found.end, reader.zone))
+        self.show_span(found.start, found.end, reader.zone)
         self._fill()
         self.bars.show_figures(found, reader)
+
+    def show_span(self, start: Instant, end: Instant, zone: str) -> None:
+        """The span that is counted, or is being counted."""
+        self.start.setDateTime(_shown(start, zone))
+        self.end.setDateTime(_shown(end, zone))
 
     def say(self, text: str) -> None:
         """Say that figures are being counted, or why they cannot be."""

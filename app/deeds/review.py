@@ -147,6 +147,7 @@ class ReviewDeeds(ClosingDeeds):
         self._span = None if start is None or end is None else (start, end)
         begin, stop = self._span or (shift.start, shift.end)
         stop = min(stop, session.moment())
+        self.pages.statistics.show_span(begin, stop, self.window.plain_reader.zone)
         self.pages.statistics.say(self.tr("Counting..."))
         request = statistics.StatisticsRequest(begin, stop, session.as_known_at)
         self.model.ask(statistics.of_ward, request, done=self._figures, failed=self._no_figures, subject="statistics")

@@ -199,7 +199,9 @@ def test_shift_figures_are_those_of_the_operation_and_can_be_saved(qtbot, window
         rows = list(csv.reader(file))
     assert tuple(rows[0]) == CSV_HEADER
     assert len(rows) == len(found) + 1
+    before = page.start.text()
     page.spans.button("day").click()
+    assert page.start.text() != before  # the span that is being counted stands there while it is
     until(qtbot, lambda: page.found.end - page.found.start == 24 * 60 * MINUTE)
 
 
