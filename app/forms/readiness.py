@@ -42,7 +42,7 @@ ITEMS: Final = (
     Item("confused", RELATIVE, "no", _BTS, "secondary"),
     Item("cognitive_impairment", RELATIVE, "no", _BTS, "secondary"),
     Item("treated_first", READY, "yes", _BTS, "confirmed"),
-    Item("chest_film", READY, "yes", "common practice, no source", "common practice"),
+    Item("chest_film", READY, "yes", "no source found", "common practice"),
     Item("monitoring", READY, "yes", "BTS Quality Standards 2018, BMJ Open Respir Res 5:e000283", "secondary"),
 )
 """The decision on escalation before support begins (the same standards, secondary) is asked by its own fields."""

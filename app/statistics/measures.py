@@ -128,8 +128,11 @@ def _gases(s: WardStatistics) -> Iterator[Measure]:
         yield Measure(group, name, count, "", g.total)
     replaced = translate("statistics", "cut short by the next change or the end of support: {count}").format(
         count=w.replaced)  # fmt: skip
-    yield Measure(group, translate("statistics", "Response windows answered by a gas"), w.answered, "", w.closed,
-                  replaced if w.replaced else "")  # fmt: skip
+    counted = translate("statistics", "windows that ended in the span; responses are of changes made in it")
+    note = f"{counted}; {replaced}" if w.replaced else counted
+    yield Measure(
+        group, translate("statistics", "Response windows answered by a gas"), w.answered, "", w.closed, note
+    )
 
 
 def _responses(s: WardStatistics) -> Iterator[Measure]:

@@ -3,7 +3,7 @@
 from app.statistics.bars import flag_bars, known_words
 from app.statistics.measures import Measure, as_text, flag_name, measures
 from app.words import Reader
-from core.figures.ward_statistics import FlagCount, Waits, WardStatistics
+from core.figures.ward_statistics import FlagCount, Waits, WardStatistics, Windows
 
 READER = Reader()
 
@@ -24,3 +24,10 @@ def test_an_unconfirmed_marker_bears_its_star_and_the_text_says_what_it_means() 
     (told,) = [m for m in measures(found, READER) if "GCS below 8*" in m.name]
     assert told.note == "not marked seen: 1"
     assert "to be confirmed locally" in as_text(found, READER).splitlines()[-1]
+
+
+def test_windows_say_of_which_changes_they_are_beside_the_responses() -> None:
+    found = WardStatistics(0, 3_600_000_000, {}, (30.0, 120.0), windows=Windows(answered=2, replaced=1))
+    row = next(m for m in measures(found, Reader()) if m.name == "Response windows answered by a gas")
+    assert row.note.startswith("windows that ended in the span; responses are of changes made in it")
+    assert row.note.endswith("cut short by the next change or the end of support: 1")

@@ -187,3 +187,7 @@ def test_a_begun_episode_is_taken_back_whole_and_stays_in_the_ledger(qtbot, wind
     qtbot.keyClicks(again.words["label"], "Bed 11")
     # in the same minute, so by the same key: what was taken back is no hindrance
     assert begin(qtbot, window, again).figures.episode == key
+
+
+def test_no_source_repeats_how_sure_it_is() -> None:
+    assert not [item.key for item in ITEMS if item.sure in item.source]
