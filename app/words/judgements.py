@@ -126,8 +126,12 @@ LEVERS: Final[dict[str, str]] = {
     "lever.leak_definition_not_known": "What the device calls leak is not known[[ (now {leak:0} L/min)]].",
     "lever.leak_first": "Leak first[[: {leak:0} L/min]].",
     "lever.leak_not_known": "Leak is not known.",
-    "lever.leak_over_limit": "Leak {leak:0} L/min is over {limit:0} L/min.",
-    "lever.leak_within_limit": "Leak {leak:0} L/min is within {limit:0} L/min.",
+    "lever.leak_over_limit":
+        "Leak {leak:0} L/min[[ (newest 15-min median or logged value, {at:time})]] "
+        "is over {limit:0} L/min.",
+    "lever.leak_within_limit":
+        "Leak {leak:0} L/min[[ (newest 15-min median or logged value, {at:time})]] "
+        "is within {limit:0} L/min.",
     "lever.little_mask_time": "Only {hours:hours} of the last {of_hours:hours} on the mask.",
     "lever.mask_time_enough": "Time on the mask is enough.",
     "lever.mask_time_not_known": "Time on the mask is not known: the start is not recorded.",

@@ -69,7 +69,7 @@ def _mask(f: Facts) -> LeverFigure:
     present = _say("present_leak", leak=leak.latest_L_per_min, limit=leak.limit_L_per_min, definition=leak.definition)
     why: list[Message] = []
     if f.leak_over:
-        why.append(_say("leak_over_limit", leak=leak.latest_L_per_min, limit=leak.limit_L_per_min))
+        why.append(_say("leak_over_limit", leak=leak.latest_L_per_min, limit=leak.limit_L_per_min, at=leak.latest_at))
     if leak.probable_breaks and leak.probable_breaks[-1][1] is None:
         why.append(_say("probable_break", since=leak.probable_breaks[-1][0]))
     clears = policy.levers.port_clears_from_cmH2O.value
@@ -80,7 +80,8 @@ def _mask(f: Facts) -> LeverFigure:
     if leak.latest_L_per_min is None:
         return _lever("mask", False, [_say("leak_not_known")], present)
     key = "leak_definition_not_known" if leak.definition is None else "leak_within_limit"
-    return _lever("mask", False, [_say(key, leak=leak.latest_L_per_min, limit=leak.limit_L_per_min)], present)
+    told = _say(key, leak=leak.latest_L_per_min, limit=leak.limit_L_per_min, at=leak.latest_at)
+    return _lever("mask", False, [told], present)
 
 
 def _secretions(f: Facts) -> LeverFigure:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pytest
 
+from app.words import Reader, sentence
 from core.judgement.levers import levers
 from core.judgement.shapes import LeverFigure
 from tests.support.log_cases import context
@@ -164,3 +165,12 @@ def test_epap_in_hypoxaemic_failure_from_a_pf_of_200(pao2: int, acts: bool) -> N
 
 def test_epap_without_a_saturation_says_so() -> None:
     assert keys(found()["epap"])[0] == "spo2_not_known"
+
+
+def test_the_leak_of_a_lever_says_of_when_it_is() -> None:
+    leaking = found(
+        "device leak 02:00 04:00 50 50", start="mode BPAP-ST ipap 16 epap 5 leak_definition unintentional"
+    )["mask"]
+    (why,) = (m for m in leaking.why if m.key == "lever.leak_over_limit")
+    assert isinstance(why.values["at"], int)
+    assert "newest 15-min median or logged value, " in sentence(why, Reader())
