@@ -10,8 +10,8 @@ from typing import Final
 CAUTIONS: Final = (
     "Supports and never replaces clinical judgement: a qualified person decides.",
     "It is no alarm and no monitor: it knows only what was logged.",
-    "Local policy and licensed practice come first. Thresholds marked *, 'from memory' or 'common practice' are to be "
-    "confirmed locally.",
+    "Local policy and licensed practice come first. Thresholds marked *, 'from memory' or 'common practice' are to "
+    "be confirmed locally.",
 )
 CAUTION: Final = " ".join(CAUTIONS)
 """All of them in one paragraph."""

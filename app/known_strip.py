@@ -37,7 +37,9 @@ class KnownStrip(QFrame):
         self.entry_back = self._button(self.tr("Recording before"), self.tr("The recording before"), "Alt+Shift+Left")
         self.back = self._button(minus, self.tr("15 minutes back"), "Alt+Left")
         self.forward = self._button(plus, self.tr("15 minutes on"), "Alt+Right")
-        self.entry_forward = self._button(self.tr("Recording after"), self.tr("The recording after"), "Alt+Shift+Right")
+        self.entry_forward = self._button(
+            self.tr("Recording after"), self.tr("The recording after"), "Alt+Shift+Right"
+        )
         self.later = self._button("", self.tr("Late entries and later corrections"), "Ctrl+Shift+L")
         self.now = self._button(self.tr("Now"), self.tr("Back to now"), "Alt+Home")
         self.typed = QLineEdit()

@@ -16,8 +16,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "archive.not_ended": "{episode} has no recorded end. Accepted: {accepted}.",
     "archive.nothing": "There is nothing to archive. Accepted: {accepted}.",
     "archive.removed": "{episodes:0} episode(s) and {documents:0} closed handover(s) were removed for good.",
-    "archive.still_named": "{count:0} closed handover(s) kept after the end may name them still: their own time is over "
-        "on {until:time}. Remove again then.",
+    "archive.still_named": "{count:0} closed handover(s) kept after the end may name them still: their own time "
+        "is over on {until:time}. Remove again then.",
     "archive.too_early": "The retention time of {episode} is not over. Accepted: from {accepted:time} on.",
     "demo.sample_refused": "The sample shift cannot be taken in: {detail}.",
     "error.unexpected": "Something went wrong in the program: {detail}. Nothing was recorded by this step.",
@@ -104,8 +104,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "store.file_gone": "{path} is no longer there. Was it moved, or a disk taken out?",
     "store.low_disk": "The disk of {path} is nearly full: {free_mb:0} MB are free, {needed_mb:0} MB are wanted. Make "
         "room before nothing can be recorded.",
-    "store.migrated": "{path} was of the older format {format} and was brought up to date. As it was before it lies beside "
-        "it as {backup}.",
+    "store.migrated": "{path} was of the older format {format} and was brought up to date. As it was before it lies "
+        "beside it as {backup}.",
     "store.missing": "There is no store {path}. Take in a file to make one, or name another.",
     "store.needs_passphrase": "{path} is encrypted. Give its passphrase (--passphrase-fd N).",
     "store.network_share": "{path} lies on a network share ({kind}), where locks cannot be relied on. "

@@ -30,9 +30,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "proposal.either_unit": "{channel:name} from {low:trim} to {high:trim} may be mmHg or kPa: say which.",
     "proposal.likely_kpa": "{channel:name} from {low:trim} to {high:trim} looks like kPa: confirm it.",
     "proposal.likely_mmhg": "{channel:name} from {low:trim} to {high:trim} looks like mmHg: confirm it.",
-    "sheet.precision_unknown":
-        "The numbers of column '{column}' have no format in the spreadsheet: whether 7.4 was written as 7.40 cannot "
-        "be told. They are taken as they stand.",
+    "sheet.precision_unknown": "The numbers of column '{column}' have no format in the spreadsheet: whether 7.4 "
+    "was written as 7.40 cannot be told. They are taken as they stand.",
     "sheet.damaged": "The spreadsheet is damaged ({detail}). Accepted: {accepted}.",
     "sheet.document_type": "The spreadsheet holds a document type. Accepted: {accepted}.",
     "sheet.encrypted": "The spreadsheet is locked by a password. Accepted: {accepted}.",

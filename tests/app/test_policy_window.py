@@ -90,7 +90,9 @@ def test_the_page_shows_all_and_what_is_chosen(qtbot: QtBot, store: Path) -> Non
         assert policy_hash(WARD)[:16] in dialog.put_by.text()
         assert not dialog.notice.isVisible()
         everything = texts(dialog)
-        assert any(t.startswith("* pH below 7.20 | concern | pH below 7.20 | everyone | confirmed") for t in everything)
+        assert any(
+            t.startswith("* pH below 7.20 | concern | pH below 7.20 | everyone | confirmed") for t in everything
+        )
         dialog.shown.button("off").click()
         assert [t.partition(" | ")[0] for t in texts(dialog) if "off" in t] == ["* Agitation"]
         dialog.shown.button("differs").click()

@@ -46,9 +46,7 @@ def write(capsys, name: str, store: Path, path: Path, *more: str) -> tuple[int, 
     _, arguments = WRITERS[name]
     deidentified = ("--deidentified",) if name == "export deidentified" else ()
     arguments = tuple(a for a in arguments if a != "--deidentified")
-    return run(
-        capsys, name.partition(" ")[0], "--store", store, "--by", "AB", *deidentified, *arguments, path, *more
-    )
+    return run(capsys, name.partition(" ")[0], "--store", store, "--by", "AB", *deidentified, *arguments, path, *more)
 
 
 @pytest.mark.parametrize("name", WRITERS)

@@ -135,7 +135,9 @@ def test_a_bed_of_another_patient_is_asked_about_however_it_is_given(store: Stor
     request = episode.BeginRequest("C", {"label": " bed  a"})
     (asked,) = episode.preview_begin(store, "AB", NOW, request).value.questions
     assert sentence(asked).startswith("Bed A is in use: episode A")
-    (asked,) = facts.preview(store, "AB", NOW, facts.FactsRequest("B", NOW, {"label": "Bed A"}, "UTC")).value.questions
+    (asked,) = facts.preview(
+        store, "AB", NOW, facts.FactsRequest("B", NOW, {"label": "Bed A"}, "UTC")
+    ).value.questions
     assert (asked.key, asked.values["episode"]) == ("doubt.label_in_use", "A")
     own = facts.preview(store, "AB", NOW, facts.FactsRequest("A", NOW, {"label": "Bed A"}, "UTC")).value
     assert not own.questions
