@@ -13,7 +13,7 @@ from importlib import import_module
 from pathlib import Path
 from typing import NoReturn
 
-from app.caution_texts import CAUTION
+from app.telling.caution_texts import CAUTION
 from core.record.instant import Instant
 from core.record.message import RecordError
 

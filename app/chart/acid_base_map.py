@@ -11,7 +11,7 @@ from PySide6.QtWidgets import QToolTip, QWidget
 from app.chart.marks import draw_card, gas_mark, solid_pen
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Values
 from app.chart.value_ticks import value_ticks, value_word
-from app.theme import Theme
+from app.look.theme import Theme
 
 
 class AcidBaseMap(QWidget):

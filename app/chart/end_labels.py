@@ -7,7 +7,7 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter
 
 from app.chart.marks import solid_pen
 from app.chart.shapes import Trace
-from app.theme import Theme
+from app.look.theme import Theme
 
 
 @dataclass(frozen=True, slots=True)

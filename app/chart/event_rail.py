@@ -9,7 +9,7 @@ from PySide6.QtCore import QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter
 
 from app.chart.shapes import Tick
-from app.theme import Theme
+from app.look.theme import Theme
 
 CAPS = (1.0, 0.26, 0.17, 0.11)
 """How much of the row one event's words may take, widest first: a long note must not silence its neighbours."""

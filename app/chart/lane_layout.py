@@ -6,7 +6,7 @@ from PySide6.QtCore import QRectF
 from PySide6.QtGui import QFontMetricsF
 
 from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
-from app.theme import Theme
+from app.look.theme import Theme
 
 _LEAST_CLOCK = 420  # below this many pixels at 100 % the two columns at the right are laid one over the other
 _CLOSE = 40  # least height of a lane at 100 %: twelve stand on a screen of 1280 x 800 at once

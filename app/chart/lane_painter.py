@@ -7,7 +7,7 @@ from app.chart.lane_layout import LaneGeometry, Placed
 from app.chart.marks import draw_card, fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
 from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.chart.time_ticks import ClockMark, date_word
-from app.theme import GasState, Theme
+from app.look.theme import GasState, Theme
 
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 _DIMMED = 0.45  # settings that were in force before the mask came off

@@ -19,7 +19,7 @@ from app.chart.lane_layout import LaneGeometry, Placed, geometry_of, hit, place_
 from app.chart.lane_painter import LanePainter
 from app.chart.shapes import Lane, LaneItem, LanesSpec
 from app.chart.time_ticks import time_ticks
-from app.theme import GRID, Theme
+from app.look.theme import GRID, Theme
 
 NO_LANE = -1
 

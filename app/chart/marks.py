@@ -11,7 +11,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen, QPolygonF
 
 from app.chart.shapes import Look
-from app.theme import RADIUS, GasState, Theme, Tier, Verdict
+from app.look.theme import RADIUS, GasState, Theme, Tier, Verdict
 
 
 def solid_pen(colour: QColor | str, width: float = 1.0) -> QPen:

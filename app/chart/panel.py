@@ -16,7 +16,7 @@ from app.chart.row import ClockRow, Margins, RowItem, visible
 from app.chart.shapes import Area, Look, PanelSpec, Reading, Scale
 from app.chart.time_ticks import ClockMark
 from app.chart.value_ticks import value_ticks, value_word
-from app.theme import Theme, blend
+from app.look.theme import Theme, blend
 
 _AIR = 0.04  # share of the range left free above and below, so that marks at its ends are whole
 

@@ -13,7 +13,7 @@ from PySide6.QtWidgets import QApplication
 from app.chart.acid_base_map import AcidBaseMap
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LanesSpec, MapSpec, StackSpec
-from app.theme import Theme
+from app.look.theme import Theme
 
 if TYPE_CHECKING:
     from app.chart.stack import PanelStack

@@ -19,7 +19,7 @@ from app.chart.panel import PanelRow
 from app.chart.row import FRONT, Frame, Layer, RowItem, visible
 from app.chart.shapes import PanelSpec, RibbonSpec, RibbonStep, Scale, Tick, Trace
 from app.chart.value_ticks import value_word
-from app.theme import Theme
+from app.look.theme import Theme
 
 _NONE = np.empty(0)
 _LEVELS = {name: Trace(name, name, "cmH\u2082O", _NONE.astype(np.int64), _NONE) for name in ("IPAP", "EPAP", "CPAP")}

@@ -24,7 +24,7 @@ from PySide6.QtWidgets import (
 from app.chart.marks import draw_card
 from app.chart.shapes import MICROSECONDS, Reading, Span
 from app.chart.time_ticks import ClockMark
-from app.theme import Theme
+from app.look.theme import Theme
 
 BACK, FRONT, CROSS = -1000.0, 1000.0, 2000.0  # below the curves, above them, above all
 

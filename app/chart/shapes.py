@@ -12,7 +12,7 @@ from zoneinfo import ZoneInfo
 import numpy as np
 from numpy.typing import NDArray
 
-from app.theme import GasState, Tier, Verdict
+from app.look.theme import GasState, Tier, Verdict
 
 Instants = NDArray[np.int64]
 Values = NDArray[np.float64]

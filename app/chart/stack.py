@@ -15,7 +15,7 @@ from app.chart.shapes import MICROSECONDS, Bracket, Reading, RibbonStep, StackSp
 from app.chart.stack_keys import key_pressed, moves_crosshair
 from app.chart.time_axis import EventRow, TimeAxisRow
 from app.chart.time_ticks import date_word, time_ticks
-from app.theme import GRID, Theme
+from app.look.theme import GRID, Theme
 
 _PANEL_LEAST = 86  # pixels at 100 %: ribbon, three panels, events and clock stand whole at 1280 x 800
 _RIBBON_WEIGHT = 1.1

@@ -12,7 +12,7 @@ from app.chart.marks import fitted
 from app.chart.row import FRONT, ClockRow, Layer, RowItem
 from app.chart.shapes import MICROSECONDS, Tick
 from app.chart.time_ticks import ClockMark, time_word
-from app.theme import Theme
+from app.look.theme import Theme
 
 
 class TimeAxisRow(ClockRow):

@@ -6,7 +6,7 @@ import argparse
 from pathlib import Path
 
 from app.commands.context import Context
-from app.formats import counted, day
+from app.look.formats import counted, day
 from app.operations import archive as operations
 from app.words import sentence
 from core.record.instant import iso

@@ -11,8 +11,8 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
-from app.clock import real_now
-from app.formats import plain
+from app.look.formats import plain
+from app.session.clock import real_now
 from core.record.instant import Instant
 
 if TYPE_CHECKING:
@@ -59,7 +59,7 @@ class Context:
         Raises:
             RecordError: `row.unknown_zone`.
         """
-        from app.local_zone import is_zone, local_zone
+        from app.session.local_zone import is_zone, local_zone
         from core.record.message import refuse
 
         if not self.zone:
@@ -180,8 +180,8 @@ class Context:
 
 def _policies_passed_over(store: Store) -> tuple[Message, ...]:
     """Newer policies of the store that cannot be read; a damaged store says so itself when it is used."""
-    from app.names_by_policy import use
     from app.operations import policy
+    from app.policy.names import use
     from storage.errors import StoreError
 
     try:
@@ -214,7 +214,7 @@ def remark(text: str) -> None:
 
 def refused(error: BaseException) -> int:
     """Say on one line why it was refused; exit code 1."""
-    from app.failure import failure_of
+    from app.session.failure import failure_of
     from app.words import sentence
 
     failure = failure_of(error)

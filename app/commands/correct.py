@@ -7,7 +7,7 @@ import sys
 from collections.abc import Mapping
 
 from app.commands.context import Context
-from app.formats import plain, quantity, wall
+from app.look.formats import plain, quantity, wall
 from app.operations import correction, intake
 from app.operations import episode as episodes
 from app.operations import flag as flags

@@ -9,6 +9,6 @@ from app.commands.context import Context
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Open it; what is entered is gone when the window closes."""
-    from app.start import run_demo
+    from app.window.start import run_demo
 
     return run_demo()

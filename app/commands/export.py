@@ -36,7 +36,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
 
 
 def _deidentified(context: Context, store: Store, request: operations.ExportRequest, value: dict[str, object]) -> int:
-    from app.export_words import statement_text
+    from app.telling.export_words import statement_text
 
     told = operations.write_deidentified(store, context.by, context.now(), request).value
     value |= {"rows": told.rows, "episodes": told.episodes, "remains": dict(told.remains),

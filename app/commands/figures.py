@@ -27,7 +27,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
         value = {"episodes": [to_json(f, lambda m: sentence(m, reader)) for f in found]}
         context.answer("", value)
         return 0
-    from app.plain_figures import episode_text
+    from app.figures.plain import episode_text
 
     context.answer("\n\n".join(episode_text(f, reader) for f in found) or "No episode had begun by then.", None)
     return 0

@@ -8,11 +8,11 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.commands.context import Context
+from app.handover.plain import handover_text
+from app.keeping.whole_file import claim, write_whole
 from app.operations import handover as operations
-from app.plain_handover import handover_text
 from app.sheet.content import sheet_content
 from app.sheet.shapes import SheetContent
-from app.whole_file import claim, write_whole
 from core.record.local_time import zoned_iso
 
 if TYPE_CHECKING:
@@ -85,7 +85,7 @@ def _close(
     context: Context, store: Store, gathered: Handover, content: SheetContent, args: argparse.Namespace
 ) -> int:
     """Keep the sheet in the ledger as it was printed, and write the very same bytes where --out says."""
-    from app.off_screen import gui_application
+    from app.look.off_screen import gui_application
     from app.sheet.printing import pdf_bytes
 
     with gui_application():
@@ -102,7 +102,7 @@ def _close(
 
 def _blank(context: Context, path: Path, paper: str) -> int:
     """The same sheet, empty."""
-    from app.off_screen import gui_application
+    from app.look.off_screen import gui_application
     from app.sheet.blank import blank_bytes
 
     with gui_application():
@@ -113,7 +113,7 @@ def _blank(context: Context, path: Path, paper: str) -> int:
 
 
 def _write_pdf(content: SheetContent, path: Path, paper: str) -> int:
-    from app.off_screen import gui_application
+    from app.look.off_screen import gui_application
     from app.sheet.printing import write_pdf
 
     with gui_application():

@@ -6,9 +6,9 @@ import argparse
 import sys
 
 from app.commands.context import Context
-from app.formats import wall
+from app.keeping.whole_file import claim, write_whole
+from app.look.formats import wall
 from app.operations import handover as operations
-from app.whole_file import claim, write_whole
 from core.record.local_time import zoned_iso
 
 

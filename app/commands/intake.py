@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
-from app.formats import counted, plain
+from app.look.formats import counted, plain
 from app.operations import intake as operations
 from app.operations.outcome import watched
 from app.words import Reader, sentence

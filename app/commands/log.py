@@ -7,7 +7,7 @@ import sys
 from math import isnan
 
 from app.commands.context import Context
-from app.formats import plain, quantity, trimmed, wall
+from app.look.formats import plain, quantity, trimmed, wall
 from app.operations import entry as operations
 from app.operations import flag as flags
 from app.words import Reader, sentence

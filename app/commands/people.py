@@ -7,7 +7,7 @@ import getpass
 import sys
 
 from app.commands.context import Context, line_of
-from app.formats import day
+from app.look.formats import day
 from app.operations import people as operations
 from core.record.instant import iso
 from core.record.message import refuse

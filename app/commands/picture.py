@@ -9,20 +9,20 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.commands.context import Context, remark
-from app.formats import wall
+from app.keeping.whole_file import claim
+from app.look.formats import wall
 from app.operations import episode as episodes
 from app.operations import figures as operations
 from app.operations import panel as panels
 from app.operations import policy as policies
-from app.picture import SUFFIXES, Picture, Titled, compare_title, moment_words, write_picture
-from app.whole_file import claim
+from app.picture.drawn import SUFFIXES, Picture, Titled, compare_title, moment_words, write_picture
 from core.record.instant import HOUR, Instant
 from core.record.message import refuse
 
 if TYPE_CHECKING:
-    from app.episode_shown import EpisodeOnScreen
-    from app.panels import PanelSet
-    from app.theme import Theme
+    from app.episode.panels import PanelSet
+    from app.look.theme import Theme
+    from app.session.episode_shown import EpisodeOnScreen
     from storage.store import Store
 
 RECENT = 24 * HOUR
@@ -41,8 +41,8 @@ def run(context: Context, args: argparse.Namespace) -> int:
         print(f"luffmark: picture --what {args.what} has no panels to choose", file=sys.stderr)
         return 2
     claim(args.out, replace=args.replace)
-    from app.off_screen import gui_application
-    from app.theme import THEMES
+    from app.look.off_screen import gui_application
+    from app.look.theme import THEMES
 
     with context.open(read_only=True) as store, gui_application():
         as_of = _moment(context, store, args) if args.as_of is None else args.as_of
@@ -90,7 +90,7 @@ def _words(context: Context, request: operations.EpisodeRequest) -> str:
 
 
 def _map(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
-    from app.map_words import titled_spec
+    from app.map.words import titled_spec
 
     figures = operations.of_episode(store, context.by, context.now(), requests[0]).value.figures
     spec = titled_spec(figures, context.reader())
@@ -100,7 +100,7 @@ def _map(context: Context, store: Store, requests: list[operations.EpisodeReques
 def _compare(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
     from app.compare.courses import compare
     from app.compare.picture import ComparisonPicture
-    from app.course import course_of
+    from app.episode.course import course_of
     from app.ward.lane_words import OnWard
 
     answers = {r.episode: operations.of_episode(store, context.by, context.now(), r).value for r in requests}
@@ -119,7 +119,7 @@ def _named(context: Context, store: Store, name: str) -> PanelSet:
         RecordError: `panel.no_set`, or what is wrong with the file.
         OSError: the file cannot be read.
     """
-    from app.panels import from_json, from_toml
+    from app.episode.panels import from_json, from_toml
 
     if name.endswith(".toml"):
         return from_toml(Path(name).read_text("utf-8"))
@@ -134,10 +134,10 @@ def _shown(
     context: Context, store: Store, request: operations.EpisodeRequest, chosen: PanelSet | None = None
 ) -> EpisodeOnScreen:
     """What the window would show; `chosen` panels, or those kept for its indication, its kind, or shipped."""
-    from app.course import course_of
-    from app.episode_feed import shipped_titles
-    from app.episode_shown import EpisodeOnScreen
-    from app.panels import family_of, from_json, shipped
+    from app.episode.course import course_of
+    from app.episode.feed import shipped_titles
+    from app.episode.panels import family_of, from_json, shipped
+    from app.session.episode_shown import EpisodeOnScreen
 
     now = context.now()
     answer = operations.of_episode(store, context.by, now, request).value

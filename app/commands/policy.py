@@ -7,7 +7,7 @@ import sys
 from pathlib import Path
 
 from app.commands.context import Context
-from app.policy_file import text_of
+from app.policy.file import text_of
 from core.judgement.policy import Policy, read_policy, shipped_policy, shipped_text
 from core.record.instant import iso
 
@@ -84,7 +84,7 @@ def _show(context: Context) -> int:
 
 def _history(context: Context) -> int:
     """Every policy that was put in force, the newest first."""
-    from app.formats import wall
+    from app.look.formats import wall
     from app.operations import policy as operations
 
     with context.open(read_only=True) as store:

@@ -16,7 +16,7 @@ from typing import TYPE_CHECKING
 from app.commands.context import Context
 from app.operations import replay as operations
 from app.operations.outcome import CancelledError, watched
-from app.replay_words import NamedPolicy, as_json, as_text
+from app.policy.replay_words import NamedPolicy, as_json, as_text
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -49,7 +49,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
 def _named(context: Context, store: Store, path: Path | None) -> NamedPolicy:
     """The policy of a file, the shipped one, or the one in force where none is named."""
     from app.operations import policy
-    from app.policy_file import text_of
+    from app.policy.file import text_of
     from core.judgement.policy import read_policy, shipped_policy, shipped_text
 
     if path is None:

@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
-from app.formats import with_unit
+from app.look.formats import with_unit
 from app.operations import backup as operations
 from app.words import sentence
 from core.record.instant import iso

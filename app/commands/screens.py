@@ -9,10 +9,10 @@ from app.commands.context import Context
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Draw them off-screen, from the sample shift unless --store names another."""
-    from app.off_screen import gui_application
+    from app.look.off_screen import gui_application
 
     with gui_application():
-        from app.screens import draw_all
+        from app.window.screens import draw_all
 
         store = context.store_path if context.store_given else None
         made = draw_all(args.out, store, passphrase=context.passphrase())

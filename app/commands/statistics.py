@@ -5,9 +5,9 @@ from __future__ import annotations
 import argparse
 
 from app.commands.context import Context
+from app.keeping.whole_file import claim, write_whole
 from app.operations import statistics as operations
 from app.statistics.measures import as_csv, as_json, as_text
-from app.whole_file import claim, write_whole
 
 
 def run(context: Context, args: argparse.Namespace) -> int:

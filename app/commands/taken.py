@@ -6,7 +6,7 @@ import argparse
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
-from app.formats import counted, wall
+from app.look.formats import counted, wall
 from app.operations import intake as operations
 from core.record.instant import iso
 from core.record.message import refuse

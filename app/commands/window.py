@@ -10,7 +10,7 @@ from app.commands.context import Context
 
 def run(context: Context, args: argparse.Namespace) -> int:
     """Open the window; the first page where there is no store yet. Ends when it is closed."""
-    from app.start import run_window
+    from app.window.start import run_window
 
     by = getattr(args, "by", "") or ""
     return run_window(_store(context), context.passphrase(), by)
@@ -18,7 +18,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
 
 def _store(context: Context) -> Path | None:
     """Which store: after a restore that is the new one, not the damaged one that still lies in the usual place."""
-    from app import preferences as kept
+    from app.keeping import preferences as kept
 
     if context.store_given:
         return context.store_path

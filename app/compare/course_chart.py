@@ -10,8 +10,8 @@ from PySide6.QtWidgets import QWidget
 from app.chart.marks import draw_card
 from app.chart.value_ticks import value_ticks
 from app.compare.courses import Comparison, Line, Row, words_of
-from app.formats import fixed
-from app.theme import Theme
+from app.look.formats import fixed
+from app.look.theme import Theme
 
 _DASHES = ((), (7.0, 3.0), (2.0, 2.0), (8.0, 2.0, 2.0, 2.0))
 _HOURS = (0.5, 1, 2, 3, 4, 6, 12, 24, 48)

@@ -8,9 +8,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from app.episode.traces import Shown, shown_as
-from app.formats import fixed
+from app.look.formats import fixed
 from app.operations.figures import EpisodeAnswer
-from app.phrases import computed_name, translate
+from app.telling.phrases import computed_name, translate
 from app.ward.lane_words import OnWard, indication_word
 from core.figures.sf_course import sf_course
 from core.judgement.policy import Policy, shipped_policy

@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor, QPainter
 
 from app.compare.course_chart import CourseChart, pen_of
 from app.compare.courses import Comparison
-from app.theme import Theme
+from app.look.theme import Theme
 
 _ROW = 22
 

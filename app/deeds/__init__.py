@@ -16,7 +16,7 @@ from app.deeds.view import ViewDeeds
 from app.deeds.ward import WardDeeds
 
 if TYPE_CHECKING:
-    from app.window import MainWindow
+    from app.window.main import MainWindow
 
 
 class Doers:

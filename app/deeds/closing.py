@@ -10,9 +10,9 @@ from PySide6.QtGui import QDesktopServices
 from PySide6.QtWidgets import QInputDialog
 
 from app.deeds.writing import WritingDeeds
-from app.failure import Failure
-from app.left_behind import HANDOVERS, OwnFolder
+from app.keeping.left_behind import HANDOVERS, OwnFolder
 from app.operations.outcome import Outcome
+from app.session.failure import Failure
 from app.words import sentence
 from core.record.message import Message
 
@@ -33,7 +33,7 @@ class ClosingDeeds(WritingDeeds):
     def do_close_handover(self) -> None:
         """Ask who gives and who takes; keep the sheet as it is printed now."""
         from app.dialogs.close_handover import CloseHandoverDialog
-        from app.formats import span, wall
+        from app.look.formats import span, wall
 
         shift, session = self.window.shift(), self.model.session
         told = span(shift.start, shift.end, session.zone)
@@ -174,7 +174,7 @@ class ClosingDeeds(WritingDeeds):
 
     def set_shift_times(self, text: str) -> None:
         """Begin shifts at other times of day, or say what is wrong with them."""
-        from app.shift import read_starts
+        from app.session.shift import read_starts
 
         starts = read_starts(text)
         if starts is None:

@@ -7,9 +7,9 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QObject
 
 if TYPE_CHECKING:
-    from app.pages import Pages
-    from app.session import SessionModel
-    from app.window import MainWindow
+    from app.session.model import SessionModel
+    from app.window.main import MainWindow
+    from app.window.pages import Pages
 
 
 class Doer(QObject):

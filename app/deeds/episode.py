@@ -5,14 +5,14 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
-from app.episode_feed import shipped_titles
+from app.episode.feed import shipped_titles
+from app.episode.panels import PanelSet, shipped, to_json
 from app.operations import panel as panel_operations
 from app.operations.outcome import Outcome
-from app.panels import PanelSet, shipped, to_json
 
 if TYPE_CHECKING:
     from app.chart.stack import PanelStack
-    from app.window import MainWindow
+    from app.window.main import MainWindow
 
 
 class EpisodeDeeds(Doer):

@@ -10,12 +10,13 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QDialog, QFileDialog
 
-from app.clock import REAL, running_from
 from app.deeds.making import MakingDeeds, usual_folder
-from app.left_behind import SAMPLE, OwnFolder
-from app.local_zone import local_zone
-from app.runner import Opener, Runner
-from app.session import Session, SessionModel
+from app.keeping.left_behind import SAMPLE, OwnFolder
+from app.session.clock import REAL, running_from
+from app.session.local_zone import local_zone
+from app.session.model import SessionModel
+from app.session.runner import Opener, Runner
+from app.session.state import Session
 from storage.store import Store
 
 if TYPE_CHECKING:

@@ -6,13 +6,13 @@ from collections.abc import Callable
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
-from app.log_strip import LogStrip
 from app.operations.recording import Recorded
+from app.strip.log_strip import LogStrip
 
 if TYPE_CHECKING:
-    from app.form_drafts import LostForm
     from app.forms.entry_form import EntryForm
     from app.forms.previewed_form import PreviewedForm
+    from app.keeping.form_drafts import LostForm
 
 
 class FormDeeds(Doer):

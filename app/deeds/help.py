@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 from app.deeds.doer import Doer
 
 if TYPE_CHECKING:
-    from app.problem_report import Open
+    from app.keeping.problem_report import Open
 
 
 class HelpDeeds(Doer):
@@ -15,7 +15,7 @@ class HelpDeeds(Doer):
 
     def do_help(self) -> None:
         """Keys, the strip's words, what the shapes mean."""
-        from app.help_dialog import HelpDialog
+        from app.window.help_dialog import HelpDialog
 
         HelpDialog(self.window.theme, self.window).open()
 
@@ -33,8 +33,8 @@ class HelpDeeds(Doer):
     def do_report_problem(self) -> None:
         """A report to be read, then saved or copied."""
         from app.dialogs.problem_report import ProblemReportDialog
-        from app.log_file import default_folder
-        from app.problem_report import report
+        from app.keeping.log_file import default_folder
+        from app.keeping.problem_report import report
 
         window = self.window
         size = (window.width(), window.height())
@@ -43,7 +43,7 @@ class HelpDeeds(Doer):
 
     def _open_store(self) -> Open | None:
         """What is told of the open store."""
-        from app.problem_report import Open
+        from app.keeping.problem_report import Open
 
         window = self.window
         if window.model is None or window.feed is None or window.pages is None:
@@ -54,6 +54,6 @@ class HelpDeeds(Doer):
 
     def do_about(self) -> None:
         """What this is, and its cautions."""
-        from app.about import AboutDialog
+        from app.window.about import AboutDialog
 
         AboutDialog(self.window.theme, self.window).open()

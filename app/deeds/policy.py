@@ -8,13 +8,13 @@ from typing import TYPE_CHECKING
 from PySide6.QtWidgets import QFileDialog
 
 from app.deeds.doer import Doer
-from app.failure import Failure, failure_of
 from app.operations.outcome import Outcome
+from app.session.failure import Failure, failure_of
 
 if TYPE_CHECKING:
     from app.dialogs.policy_file import PolicyFileDialog
     from app.operations.policy import PolicyInForce
-    from app.policy_view import PolicyDialog
+    from app.policy.view import PolicyDialog
     from core.judgement.policy import Policy
 
 KINDS = "Policy (*.toml)"
@@ -33,7 +33,7 @@ class PolicyDeeds(Doer):
         self.model.ask(policy.show, None, done=self._found, subject="policy")
 
     def _found(self, outcome: Outcome[PolicyInForce]) -> None:
-        from app.policy_view import PolicyDialog
+        from app.policy.view import PolicyDialog
 
         if self.shown is not None:
             self.shown.show_policy(outcome.value, self.window.plain_reader)
@@ -63,7 +63,7 @@ class PolicyDeeds(Doer):
     def look_at(self, path: Path) -> None:
         """Show what a file holds; the dialog puts it in force."""
         from app.dialogs.policy_file import PolicyFileDialog
-        from app.policy_file import text_of
+        from app.policy.file import text_of
         from core.record.message import RecordError
 
         if self.shown is None:

@@ -5,8 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from app.deeds.closing import ClosingDeeds
-from app.failure import Failure
 from app.operations.outcome import Outcome
+from app.session.failure import Failure
 from app.words import sentence
 from core.record.instant import MINUTE, Instant
 from core.record.message import RecordError
@@ -120,7 +120,7 @@ class ReviewDeeds(ClosingDeeds):
             self.window.say(self.tr("The window is live: nothing can have come later."))
             return
         from app.dialogs.table import TableDialog
-        from app.later_words import later_table
+        from app.telling.later_words import later_table
 
         answers = self.window.feed.answers if self.window.feed is not None else {}
         labels = {key: a.figures.label for key, a in answers.items()}

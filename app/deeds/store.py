@@ -8,14 +8,14 @@ from typing import TYPE_CHECKING, TypeVar
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QInputDialog
 
-from app.backups import folder_for
-from app.clock import REAL, Clock
 from app.deeds.doer import Doer
-from app.failure import Failure
-from app.lock_page import Way
+from app.keeping.backups import folder_for
+from app.keeping.lock_page import Way
+from app.keeping.preferences import MOST_LOCK_MINUTES
+from app.keeping.steps import Step
 from app.operations.outcome import Outcome
-from app.preferences import MOST_LOCK_MINUTES
-from app.steps import Step
+from app.session.clock import REAL, Clock
+from app.session.failure import Failure
 from app.words import sentence
 from core.record.message import Message
 from storage.backup_rotation import backups_in
@@ -186,7 +186,7 @@ class StoreDeeds(Doer):
             self.window.say(f"{sound} {borne_out}".rstrip())
             return
         from app.dialogs.table import TableDialog
-        from app.tables import Table
+        from app.telling.tables import Table
 
         texts = [sentence(m, self.window.reader) for m in outcome.value]
         heads = (self.tr("No."), self.tr("Finding"))

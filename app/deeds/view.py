@@ -11,8 +11,8 @@ from app.ward.lane_words import open_flags
 from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, LeverFigure, ResponseFigure
 
 if TYPE_CHECKING:
-    from app.explain import Explanation
-    from app.fact import Fact
+    from app.explain.explanation import Explanation
+    from app.explain.fact import Fact
 
 
 class ViewDeeds(Doer):
@@ -36,7 +36,7 @@ class ViewDeeds(Doer):
 
     def explain(self, explanation: Explanation) -> None:
         """Show an explanation."""
-        from app.explain_dialog import ExplainDialog
+        from app.explain.dialog import ExplainDialog
 
         ExplainDialog(explanation, self.window.theme, self.window).open()
 
@@ -47,7 +47,7 @@ class ViewDeeds(Doer):
             self.explain(found)
 
     def _focused_fact(self) -> Fact | None:
-        from app.fact import Fact
+        from app.explain.fact import Fact
 
         widget = QApplication.focusWidget()
         while widget is not None and not isinstance(widget, Fact):
@@ -96,7 +96,7 @@ class ViewDeeds(Doer):
 
     def of_payload(self, payload: object) -> Explanation | None:
         """The explanation of a figure."""
-        from app.explain import Explainer
+        from app.explain.findings import Explainer
 
         feed = self.window.feed
         policy = feed.policy if feed is not None else self.model.session.policy
@@ -114,7 +114,7 @@ class ViewDeeds(Doer):
     def do_table(self) -> None:
         """The page's chart as a table and in words."""
         from app.dialogs.table import TableDialog
-        from app.tables import table_of_page
+        from app.telling.tables import table_of_page
 
         table = table_of_page(self.window)
         if table is not None:

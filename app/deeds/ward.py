@@ -6,8 +6,8 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
-from app.failure import Failure
 from app.operations.outcome import Outcome
+from app.session.failure import Failure
 from app.ward.ordering import Order, Shown
 from app.words import sentence
 

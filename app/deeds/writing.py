@@ -9,8 +9,8 @@ from typing import TYPE_CHECKING
 from PySide6.QtWidgets import QFileDialog
 
 from app.deeds.doer import Doer
-from app.failure import failure_of
 from app.operations.outcome import Outcome
+from app.session.failure import failure_of
 
 if TYPE_CHECKING:
     from app.dialogs.export import Wanted
@@ -29,7 +29,7 @@ class WritingDeeds(Doer):
 
     def write(self, path: Path, data: bytes) -> None:
         """Write a file whole, and say so or say why not."""
-        from app.whole_file import write_whole
+        from app.keeping.whole_file import write_whole
 
         self.attempt(path, lambda: write_whole(path, data))
 
@@ -46,8 +46,8 @@ class WritingDeeds(Doer):
 
     def save_picture(self) -> None:
         """Ask where, draw what the page shows as PNG, SVG or PDF."""
-        from app.picture import picture_of_page
-        from app.theme import LIGHT
+        from app.look.theme import LIGHT
+        from app.picture.drawn import picture_of_page
 
         if picture_of_page(self.pages, LIGHT, "") is None:
             self.window.say(self.tr("This page is text: save it as a PDF with Ctrl+P."))
@@ -59,8 +59,8 @@ class WritingDeeds(Doer):
 
     def write_picture(self, path: Path) -> None:
         """Draw what the page shows into a file, and say so or say why not."""
-        from app.picture import SUFFIXES, moment_words, picture_of_page, write_picture
-        from app.theme import LIGHT
+        from app.look.theme import LIGHT
+        from app.picture.drawn import SUFFIXES, moment_words, picture_of_page, write_picture
 
         session = self.model.session
         moment = moment_words(session.moment(), session.as_known_at, session.zone)

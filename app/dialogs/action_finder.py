@@ -13,9 +13,9 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.actions import found, help_of, keys_of, name_of
-from app.fitted import FittedDialog, fit
-from app.theme import Theme
+from app.look.fitted import FittedDialog, fit
+from app.look.theme import Theme
+from app.window.actions import found, help_of, keys_of, name_of
 
 
 class ActionFinder(FittedDialog):

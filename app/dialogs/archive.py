@@ -19,14 +19,14 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.formats import counted, day
+from app.look.copying import can_be_copied
+from app.look.formats import counted, day
+from app.look.theme import Theme
 from app.operations import archive as operations
 from app.operations.outcome import Outcome
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.words import Reader, sentence
 from storage.archive import MOST_DAYS, Archived, Ended, Removed
 from storage.backup_rotation import YEAR

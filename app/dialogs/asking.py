@@ -15,8 +15,8 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.fitted import FittedDialog, RollArea, room_for
-from app.theme import Theme
+from app.look.fitted import FittedDialog, RollArea, room_for
+from app.look.theme import Theme
 
 
 class AskingDialog(FittedDialog):

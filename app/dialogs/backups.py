@@ -17,13 +17,13 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.backups import BackupKeeper
-from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.formats import wall
+from app.keeping.backups import BackupKeeper
+from app.look.copying import can_be_copied
+from app.look.formats import wall
+from app.look.theme import Theme
 from app.operations import backup as backups
-from app.theme import Theme
+from app.session.failure import Failure
 from app.words import Reader, sentence
 from core.record.instant import Instant
 from storage.backup_rotation import backups_in

@@ -6,13 +6,13 @@ from collections.abc import Callable, Sequence
 
 from PySide6.QtWidgets import QComboBox, QLineEdit, QWidget
 
-from app.choice_row import ChoiceRow
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.finding_names import due_name
+from app.look.choice_row import ChoiceRow
+from app.look.plain_label import plain_label
+from app.look.theme import Theme
 from app.operations.due import DONE, NOT_NEEDED
-from app.plain_label import plain_label
-from app.theme import Theme
+from app.session.failure import Failure
+from app.telling.finding_names import due_name
 from app.words import Reader, sentence
 from core.judgement.shapes import DueFigure
 

@@ -6,10 +6,10 @@ from collections.abc import Callable
 
 from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
 
-from app.chooser import Chooser
 from app.dialogs.asking import AskingDialog
+from app.look.chooser import Chooser
+from app.look.theme import Theme
 from app.sheet.printing import PAPERS
-from app.theme import Theme
 
 
 class CloseHandoverDialog(AskingDialog):

@@ -18,10 +18,10 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.copying import can_be_copied
-from app.fitted import FittedDialog, fit
-from app.formats import wall
-from app.theme import Theme
+from app.look.copying import can_be_copied
+from app.look.fitted import FittedDialog, fit
+from app.look.formats import wall
+from app.look.theme import Theme
 
 if TYPE_CHECKING:
     from storage.documents import DocumentFacts

@@ -16,19 +16,19 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.chooser import Chooser
-from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.formats import inert, quantity, wall
 from app.forms.typed_time import typed_near
+from app.look.chooser import Chooser
+from app.look.copying import can_be_copied
+from app.look.formats import inert, quantity, wall
+from app.look.theme import Theme
 from app.operations import correction, intake
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
-from app.phrases import channel_name
-from app.session import SessionModel
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.strip.settle_time import SettleTime
-from app.theme import Theme
+from app.telling.phrases import channel_name
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
 from core.record.entries import Entry

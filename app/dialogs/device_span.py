@@ -5,18 +5,18 @@ from __future__ import annotations
 from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtWidgets import QLabel, QLineEdit, QListWidget, QListWidgetItem, QPushButton, QWidget
 
-from app.choice_row import ChoiceRow
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.formats import span, trimmed
 from app.forms.typed_time import typed_time
+from app.look.choice_row import ChoiceRow
+from app.look.formats import span, trimmed
+from app.look.theme import Theme
 from app.operations import correction
 from app.operations import device_span as operations
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
-from app.phrases import channel_name
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
+from app.telling.phrases import channel_name
 from app.words import Reader, sentence
 from core.record.message import RecordError
 

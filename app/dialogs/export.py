@@ -8,10 +8,10 @@ from dataclasses import dataclass
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QCheckBox, QLabel, QListWidget, QListWidgetItem, QWidget
 
-from app.chooser import Chooser
 from app.dialogs.asking import AskingDialog
-from app.phrases import translate
-from app.theme import Theme
+from app.look.chooser import Chooser
+from app.look.theme import Theme
+from app.telling.phrases import translate
 from core.record.channels import Group, by_group
 
 _KEY = Qt.ItemDataRole.UserRole

@@ -17,12 +17,12 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.clock import Clock
 from app.dialogs.asking import label_beside
 from app.dialogs.passphrase import SecretDialog
-from app.failure import Failure
-from app.runner import Opener, Operation, Runner
-from app.theme import Theme
+from app.look.theme import Theme
+from app.session.clock import Clock
+from app.session.failure import Failure
+from app.session.runner import Opener, Operation, Runner
 from app.words import Reader, sentence
 from storage.people import MOST_INITIALS
 

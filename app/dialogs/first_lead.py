@@ -6,11 +6,11 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
 
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
+from app.look.theme import Theme
 from app.operations import people as operations
 from app.operations.outcome import Outcome
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.words import Reader, sentence
 from storage.people import LEAD, LEAST_PIN, MOST_INITIALS, MOST_PIN
 

@@ -10,18 +10,18 @@ from PySide6.QtCore import QElapsedTimer, QTimer, Signal
 from PySide6.QtWidgets import QCheckBox, QProgressBar, QWidget
 
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
 from app.intake_window.code_rows import CodeRows
 from app.intake_window.found_table import MOST_ROWS, FoundTable
 from app.intake_window.patient_rows import PatientRows
+from app.look.plain_label import plain_label
+from app.look.theme import Theme
 from app.operations import intake as intake_operations
 from app.operations import mapping as mapping_operations
 from app.operations.intake import ReadRequest, TakeRequest
 from app.operations.outcome import Outcome
-from app.plain_label import plain_label
-from app.runner import Progress
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
+from app.session.runner import Progress
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:

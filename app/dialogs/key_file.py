@@ -6,12 +6,12 @@ from pathlib import Path
 
 from PySide6.QtWidgets import QWidget
 
-from app.clock import Clock
 from app.dialogs.file_work import FileWork
-from app.formats import wall
+from app.look.formats import wall
+from app.look.theme import Theme
 from app.operations import key_file
 from app.operations.outcome import Outcome
-from app.theme import Theme
+from app.session.clock import Clock
 from app.words import Reader
 from storage.backup_rotation import taken_at
 

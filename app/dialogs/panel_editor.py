@@ -25,14 +25,14 @@ from PySide6.QtWidgets import (
 
 from app.dialogs.axis_fields import AxisFields
 from app.dialogs.panel_sets import PanelSets
+from app.episode.feed import shipped_titles
+from app.episode.panels import Panel, PanelSet, drawable, from_toml, shipped, to_toml
 from app.episode.traces import shown_as
-from app.episode_feed import shipped_titles
-from app.failure import failure_of
-from app.fitted import FittedDialog, fit
-from app.panels import Panel, PanelSet, drawable, from_toml, shipped, to_toml
-from app.phrases import computed_name
-from app.theme import Theme
-from app.whole_file import write_whole
+from app.keeping.whole_file import write_whole
+from app.look.fitted import FittedDialog, fit
+from app.look.theme import Theme
+from app.session.failure import failure_of
+from app.telling.phrases import computed_name
 from app.words import Reader, sentence
 from core.record.message import RecordError, refuse
 

@@ -7,9 +7,9 @@ from collections.abc import Mapping
 from PySide6.QtCore import QSignalBlocker, Signal
 from PySide6.QtWidgets import QHBoxLayout, QInputDialog, QLabel, QPushButton, QVBoxLayout, QWidget
 
-from app.chooser import Chooser
-from app.panels import PanelSet
-from app.theme import Theme
+from app.episode.panels import PanelSet
+from app.look.chooser import Chooser
+from app.look.theme import Theme
 from app.ward.lane_words import indication_word
 
 MOST_NAME = 60

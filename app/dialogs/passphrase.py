@@ -9,8 +9,8 @@ from PySide6.QtGui import QFontDatabase, QGuiApplication, QTextDocument
 from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLabel, QLineEdit, QPushButton, QWidget
 
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.theme import Theme
+from app.look.theme import Theme
+from app.session.failure import Failure
 from app.words import DEFAULT, sentence
 from core.record.message import RecordError
 from storage.keys import MIN_PASSPHRASE, check_passphrase

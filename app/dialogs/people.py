@@ -17,14 +17,14 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.formats import day
+from app.look.copying import can_be_copied
+from app.look.formats import day
+from app.look.theme import Theme
 from app.operations import people as operations
 from app.operations.outcome import Outcome
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.words import Reader, sentence
 from storage.people import LEAD, LEAST_PIN, MOST_INITIALS, MOST_PIN, STAFF, Person
 

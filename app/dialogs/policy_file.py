@@ -8,12 +8,12 @@ from pathlib import Path
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QLabel, QTableWidget, QTableWidgetItem, QWidget
 
-from app.copying import can_be_copied
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.plain_label import plain_label
-from app.policy_words import rules
-from app.theme import Theme
+from app.look.copying import can_be_copied
+from app.look.plain_label import plain_label
+from app.look.theme import Theme
+from app.policy.words import rules
+from app.session.failure import Failure
 from app.words import Reader, sentence
 from core.judgement.policy import read_policy
 from core.judgement.policy_check import ERROR, PolicyDifference, between, check

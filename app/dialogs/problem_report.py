@@ -16,10 +16,10 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.failure import failure_of
-from app.fitted import FittedDialog, fit
-from app.theme import Theme
-from app.whole_file import write_whole
+from app.keeping.whole_file import write_whole
+from app.look.fitted import FittedDialog, fit
+from app.look.theme import Theme
+from app.session.failure import failure_of
 from app.words import Reader, sentence
 
 

@@ -7,14 +7,14 @@ from pathlib import Path
 from PySide6.QtCore import QCoreApplication, QTimer
 from PySide6.QtWidgets import QCheckBox, QLineEdit, QWidget
 
-from app.clock import Clock
 from app.dialogs.file_work import FileWork, free_name
-from app.failure import Failure
-from app.formats import wall, with_unit
+from app.look.formats import wall, with_unit
+from app.look.theme import Theme
 from app.operations import backup as backups
 from app.operations.outcome import Outcome
-from app.phrases import channel_name
-from app.theme import Theme
+from app.session.clock import Clock
+from app.session.failure import Failure
+from app.telling.phrases import channel_name
 from app.words import Reader, sentence
 from storage.backup_rotation import taken_at
 from storage.people import MOST_PIN

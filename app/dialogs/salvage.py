@@ -7,11 +7,11 @@ from typing import Any
 
 from PySide6.QtWidgets import QWidget
 
-from app.clock import Clock
 from app.dialogs.file_work import FileWork, free_name
+from app.look.theme import Theme
 from app.operations import salvage as salvaging
 from app.operations.outcome import Outcome
-from app.theme import Theme
+from app.session.clock import Clock
 from app.words import Reader, sentence
 
 

@@ -6,11 +6,11 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QCheckBox, QLabel, QWidget
 
 from app.dialogs.passphrase import SecretDialog
-from app.failure import Failure
+from app.look.theme import Theme
 from app.operations import passphrase as operations
 from app.operations.outcome import Outcome
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.words import Reader, sentence
 
 

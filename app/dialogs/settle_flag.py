@@ -8,9 +8,9 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
 
 from app.dialogs.asking import AskingDialog
-from app.failure import Failure
-from app.finding_names import marker_name
-from app.theme import Theme
+from app.look.theme import Theme
+from app.session.failure import Failure
+from app.telling.finding_names import marker_name
 from app.words import Reader, sentence
 from core.judgement.shapes import FlagFigure
 

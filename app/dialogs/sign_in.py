@@ -7,8 +7,8 @@ from collections.abc import Iterable, Sequence
 from PySide6.QtWidgets import QLabel, QLineEdit, QPushButton, QWidget
 
 from app.dialogs.asking import AskingDialog
-from app.flow_row import FlowRow
-from app.theme import Theme
+from app.look.flow_row import FlowRow
+from app.look.theme import Theme
 from core.record.episode import Episode
 
 MOST = 12

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from app.explain import Explanation
-from app.fact import Fact
-from app.finding_names import due_name
-from app.phrases import translate
-from app.theme import Theme
+from app.explain.explanation import Explanation
+from app.explain.fact import Fact
+from app.look.theme import Theme
+from app.telling.finding_names import due_name
+from app.telling.phrases import translate
 from app.words import Reader, sentence
 from core.judgement.shapes import DueFigure, EpisodeFigures
 

@@ -6,12 +6,12 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent, QMouseEvent
 from PySide6.QtWidgets import QApplication, QFrame, QLabel, QVBoxLayout, QWidget
 
-from app.explain_figures import explain_row
-from app.fact import Fact, heading
-from app.figure_rows import FigureGroup, FigureRow
-from app.formats import since
-from app.phrases import translate
-from app.theme import Theme
+from app.explain.fact import Fact, heading
+from app.explain.figures import explain_row
+from app.figures.rows import FigureGroup, FigureRow
+from app.look.formats import since
+from app.look.theme import Theme
+from app.telling.phrases import translate
 from app.words import Reader
 from core.record.instant import Instant
 

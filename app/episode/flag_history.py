@@ -4,12 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from app.certainty import certainty_words
-from app.explain import Explanation
-from app.fact import Fact
-from app.finding_names import marker_name
-from app.phrases import translate
-from app.theme import Theme, Tier, tier_word
+from app.explain.explanation import Explanation
+from app.explain.fact import Fact
+from app.look.theme import Theme, Tier, tier_word
+from app.telling.certainty import certainty_words
+from app.telling.finding_names import marker_name
+from app.telling.phrases import translate
 from app.words import Reader, sentence
 from core.judgement.shapes import EpisodeFigures, FlagFigure
 

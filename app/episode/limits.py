@@ -5,11 +5,11 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app.chart.shapes import Band
+from app.episode.panels import Panel
 from app.episode.traces import shown_as
-from app.episode_shown import EpisodeOnScreen
-from app.formats import fixed, trimmed
-from app.panels import Panel
-from app.phrases import translate
+from app.look.formats import fixed, trimmed
+from app.session.episode_shown import EpisodeOnScreen
+from app.telling.phrases import translate
 
 _BEYOND = 1e6
 """Past every scale: a band with one end reaches to the edge of the panel."""

@@ -9,10 +9,10 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QFrame, QLabel, QSizePolicy, QVBoxLayout
 
 from app.chart.shapes import Look, Reading
-from app.course import Stretch
-from app.formats import fixed, minutes, wall
-from app.phrases import settings_line
-from app.theme import Theme
+from app.episode.course import Stretch
+from app.look.formats import fixed, minutes, wall
+from app.look.theme import Theme
+from app.telling.phrases import settings_line
 from core.record.instant import MINUTE, Instant
 
 FRESH = 2 * MINUTE

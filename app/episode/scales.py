@@ -10,8 +10,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from app.chart.shapes import Area, Scale, Trace
+from app.episode.panels import Panel
 from app.episode.traces import shown_as
-from app.panels import Panel
 
 USUAL: Final = {
     "ph": (7.15, 7.45),

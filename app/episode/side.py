@@ -8,21 +8,24 @@ from dataclasses import replace
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QFrame, QScrollArea, QVBoxLayout, QWidget
 
-from app.certainty import certainty_words
 from app.episode.due_done import done_fact
 from app.episode.figure_list import FigureList
 from app.episode.flag_history import history_fact, word_lines
-from app.explain import Explainer, Explanation
-from app.explain_figures import CLASSES, explain_row, score_in, score_value
-from app.fact import Fact, heading
-from app.figure_groups import figure_groups
-from app.figure_leak import mask_rows
-from app.figure_rows import RowMaker
-from app.figure_values import input_name
-from app.finding_names import due_name, lever_name, marker_name
-from app.flag_spans import with_gaps
-from app.formats import clock, hours, minutes, opened, since, trimmed
-from app.headline import (
+from app.explain.explanation import Explanation
+from app.explain.fact import Fact, heading
+from app.explain.figures import CLASSES, explain_row, score_in, score_value
+from app.explain.findings import Explainer
+from app.figures.groups import figure_groups
+from app.figures.leak import mask_rows
+from app.figures.rows import RowMaker
+from app.figures.values import input_name
+from app.look.formats import clock, hours, minutes, opened, since, trimmed
+from app.look.signs import Sign
+from app.look.theme import Theme, Tier, Verdict, tier_word, verdict_word
+from app.telling.certainty import certainty_words
+from app.telling.finding_names import due_name, lever_name, marker_name
+from app.telling.flag_spans import with_gaps
+from app.telling.headline import (
     Headline,
     beside_pf,
     deciding,
@@ -33,11 +36,9 @@ from app.headline import (
     pf_word,
     sign_of,
 )
-from app.lever_words import lever_reasons, lever_sentence, lever_standing
-from app.phrases import gas_words, state_of, support_now, translate
-from app.presumed import presumed_word
-from app.signs import Sign
-from app.theme import Theme, Tier, Verdict, tier_word, verdict_word
+from app.telling.lever_words import lever_reasons, lever_sentence, lever_standing
+from app.telling.phrases import gas_words, state_of, support_now, translate
+from app.telling.presumed import presumed_word
 from app.ward.lane_words import anchor_name, open_flags
 from app.ward.ordering import OPEN_DUE
 from app.words import Reader, sentence

@@ -9,15 +9,15 @@ import numpy as np
 
 from app.chart.shapes import Area, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick
 from app.episode.limits import bands_of
+from app.episode.panels import Panel
 from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
-from app.episode_shown import EpisodeOnScreen
-from app.formats import clock, quantity
-from app.headline import lost_gain, response_state_word, sign_of, verdict_with_loss
-from app.later_words import later_word
-from app.panels import Panel
-from app.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
-from app.theme import verdict_of
+from app.look.formats import clock, quantity
+from app.look.theme import verdict_of
+from app.session.episode_shown import EpisodeOnScreen
+from app.telling.headline import lost_gain, response_state_word, sign_of, verdict_with_loss
+from app.telling.later_words import later_word
+from app.telling.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
 from app.ward.lane_words import anchor_name
 from core.judgement.shapes import ResponseFigure
 from core.record.channels import Group, by_group

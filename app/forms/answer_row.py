@@ -8,8 +8,8 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QPushButton, QWidget
 
-from app.flow_row import FlowRow
-from app.theme import Theme
+from app.look.flow_row import FlowRow
+from app.look.theme import Theme
 
 TARGET = 36
 

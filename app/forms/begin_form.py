@@ -7,7 +7,6 @@ from collections.abc import Iterable
 
 from PySide6.QtWidgets import QLineEdit, QWidget
 
-from app.formats import clock, day
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Card, Cell, QuietChooser
 from app.forms.gas_values import GasValues
@@ -17,10 +16,11 @@ from app.forms.readiness import ABSOLUTE, RELATIVE
 from app.forms.readiness_card import ReadinessCard
 from app.forms.running_card import RunningCard
 from app.forms.typed_time import typed_iso, typed_time
+from app.look.formats import clock, day
 from app.operations import episode
 from app.operations.episode import BeginRequest, Given
-from app.phrases import channel_name
 from app.strip.preview_words import reading_words
+from app.telling.phrases import channel_name
 from app.ward.lane_words import indication_word
 from app.words import sentence
 from core.record.channels import CEILINGS, CHANNELS, HYPERCAPNIC_RISK, INDICATIONS, RESUSCITATION, Group

@@ -5,9 +5,9 @@ from __future__ import annotations
 from PySide6.QtGui import QWheelEvent
 from PySide6.QtWidgets import QFrame, QLabel, QSizePolicy, QVBoxLayout, QWidget
 
-from app.chooser import Chooser
-from app.flow_row import FlowRow
-from app.theme import Theme
+from app.look.chooser import Chooser
+from app.look.flow_row import FlowRow
+from app.look.theme import Theme
 
 WIDTH = 228
 

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from PySide6.QtWidgets import QLineEdit
 
-from app.formats import wall
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Cell
 from app.forms.entry_form import EntryForm
-from app.phrases import channel_name
+from app.look.formats import wall
+from app.telling.phrases import channel_name
 from core.record.channels import END_REASONS
 
 

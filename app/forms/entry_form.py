@@ -13,11 +13,11 @@ from typing import NamedTuple
 from PySide6.QtWidgets import QWidget
 
 from app.forms.previewed_form import PreviewedForm
+from app.look.theme import Theme
 from app.operations import entry
 from app.operations.entry import LineRequest
-from app.session import SessionModel
+from app.session.model import SessionModel
 from app.strip.preview_words import PreviewWords, preview_words
-from app.theme import Theme
 from core.record.channels import CHANNELS
 from core.record.episode import Episode
 from core.record.instant import Instant

@@ -6,12 +6,12 @@ from collections.abc import Callable
 
 from PySide6.QtWidgets import QLineEdit, QWidget
 
-from app.formats import trimmed
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import QuietChooser
 from app.forms.number_field import NumberField
-from app.phrases import channel_name
-from app.theme import Theme
+from app.look.formats import trimmed
+from app.look.theme import Theme
+from app.telling.phrases import channel_name
 from core.record.channels import CHANNELS, Kind
 from core.record.episode import Episode
 from core.record.instant import Instant

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from dataclasses import replace
 
-from app.formats import since, wall
 from app.forms.cells import Cell
 from app.forms.entry_form import EntryForm
 from app.forms.fact_fields import FactField
 from app.forms.typed_time import typed_iso, typed_time
+from app.look.formats import since, wall
 from app.operations import facts
 from app.operations.facts import FactsRequest
 from app.ward.lane_words import indication_word

@@ -8,10 +8,10 @@ from math import isnan
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QLabel
 
-from app.formats import fraction
 from app.forms.entry_form import EntryForm, worded
 from app.forms.gas_check import GasCheck, check_of
 from app.forms.gas_values import GasValues
+from app.look.formats import fraction
 from app.words import sentence
 
 

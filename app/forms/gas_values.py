@@ -8,8 +8,8 @@ from PySide6.QtWidgets import QVBoxLayout, QWidget
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Card, Cell
 from app.forms.number_field import NumberField
-from app.phrases import channel_name
-from app.theme import Theme
+from app.look.theme import Theme
+from app.telling.phrases import channel_name
 from core.record.channels import CHANNELS, SITES
 
 _STEPS = {"ph": 0.01, "lactate": 0.1}

@@ -6,8 +6,8 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QValidator, QWheelEvent
 from PySide6.QtWidgets import QAbstractSpinBox, QHBoxLayout, QPushButton, QWidget
 
-from app.formats import MINUS, trimmed
-from app.theme import Theme
+from app.look.formats import MINUS, trimmed
+from app.look.theme import Theme
 from core.record.channels import CHANNELS
 
 TARGET = 44

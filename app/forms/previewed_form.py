@@ -23,17 +23,17 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.failure import Failure
-from app.fitted import FittedDialog, fit
-from app.formats import unbroken
 from app.forms.cells import Card
 from app.forms.typed import fields_of, put, read
+from app.look.fitted import FittedDialog, fit
+from app.look.formats import unbroken
+from app.look.theme import Theme
 from app.operations.outcome import Outcome
-from app.readers import reader_at
-from app.session import SessionModel
+from app.session.failure import Failure
+from app.session.model import SessionModel
+from app.session.readers import reader_at
 from app.strip.reading_time import ReadingTime
 from app.strip.settle_time import SettleTime
-from app.theme import Theme
 from app.words import Reader, sentence
 
 

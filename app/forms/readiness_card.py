@@ -7,12 +7,12 @@ from collections.abc import Mapping
 from PySide6.QtCore import QCoreApplication, Qt, Signal
 from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QWidget
 
-from app.formats import trimmed
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Card
 from app.forms.readiness import KINDS, MEASURED, RELATIVE, Measured, answered_against, of_kind
-from app.phrases import channel_name
-from app.theme import Theme
+from app.look.formats import trimmed
+from app.look.theme import Theme
+from app.telling.phrases import channel_name
 from core.record.channels import YES_NO
 from core.record.reading import Reading
 

@@ -8,8 +8,8 @@ from PySide6.QtWidgets import QLineEdit
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Card, Cell, QuietChooser
 from app.forms.number_field import NumberField
-from app.phrases import channel_name
-from app.theme import Theme
+from app.look.theme import Theme
+from app.telling.phrases import channel_name
 from core.record.channels import BILEVEL_MODES, CHANNELS, MODES
 
 _STARTS = {"ipap": 12.0, "epap": 5.0, "cpap": 8.0, "fio2": 28.0, "o2_flow": 2.0, "rate_set": 14.0}

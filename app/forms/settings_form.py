@@ -6,12 +6,12 @@ from math import isnan
 
 from PySide6.QtWidgets import QLabel, QVBoxLayout, QWidget
 
-from app.formats import trimmed
 from app.forms.cells import WIDTH, Cell, QuietChooser
 from app.forms.entry_form import EntryForm, worded
 from app.forms.number_field import NumberField
-from app.phrases import channel_name, known
+from app.look.formats import trimmed
 from app.strip.preview_words import own_rate, with_readings
+from app.telling.phrases import channel_name, known
 from core.judgement.setting_change import CO2, changed, effects
 from core.record.channels import BILEVEL_MODES, CHANNELS, INTERFACES, MODES
 from core.record.settings import Settings

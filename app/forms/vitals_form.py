@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from app.formats import choice_word, quantity, since
 from app.forms.answer_row import AnswerRow
 from app.forms.cells import Cell
 from app.forms.entry_form import EntryForm, worded
 from app.forms.number_field import NumberField
-from app.phrases import channel_name
+from app.look.formats import choice_word, quantity, since
+from app.telling.phrases import channel_name
 from core.record.channels import CHANNELS
 from core.record.instant import DAY
 from core.record.units import written

@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from html import escape
 
-from app.formats import whole_units
-from app.language import in_language as tr
-from app.phrases import translate
+from app.look.formats import whole_units
+from app.look.theme import Theme, Tier, Verdict, tier_word
 from app.sheet.gas_table import HEADINGS
 from app.sheet.shapes import ChangeLine, EpisodePage, FlagLine, SheetContent, WardRow
-from app.theme import Theme, Tier, Verdict, tier_word
+from app.telling.language import in_language as tr
+from app.telling.phrases import translate
 
 
 def page_html(content: SheetContent, theme: Theme) -> str:

@@ -10,7 +10,7 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QComboBox, QDoubleSpinBox, QFormLayout, QLabel, QWidget
 
 from app.intake_window.column_table import NoWheel
-from app.theme import Theme
+from app.look.theme import Theme
 from core.record.channels import LEAK_DEFINITIONS
 from storage.intake.mapping import DECIMALS, ORDERS, WRITERS, Mapping, channels_of
 

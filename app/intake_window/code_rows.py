@@ -8,10 +8,10 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
 
-from app import formats
 from app.intake_window.column_table import NoWheel, fill_channels
-from app.plain_label import plain_label
-from app.theme import Theme
+from app.look import formats
+from app.look.plain_label import plain_label
+from app.look.theme import Theme
 from storage.codes import LOINC
 
 if TYPE_CHECKING:

@@ -15,9 +15,9 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.copying import can_be_copied
-from app.formats import inert
-from app.theme import Theme
+from app.look.copying import can_be_copied
+from app.look.formats import inert
+from app.look.theme import Theme
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Group, Kind
 from core.record.message import Message

@@ -13,10 +13,10 @@ from PySide6.QtCore import QObject
 from PySide6.QtWidgets import QDialog
 
 from app.operations.intake import ReadRequest
-from app.session import SessionModel
+from app.session.model import SessionModel
 
 if TYPE_CHECKING:
-    from app.window import MainWindow
+    from app.window.main import MainWindow
 
 
 class FilesInTurn(QObject):

@@ -9,9 +9,9 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableWidget, QTableWidgetItem, QWidget
 
-from app.copying import can_be_copied
-from app.formats import inert
 from app.intake_window.new_rows import new_rows
+from app.look.copying import can_be_copied
+from app.look.formats import inert
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:

@@ -8,10 +8,10 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QBoxLayout, QComboBox, QHBoxLayout, QLabel, QSpinBox, QWidget
 
-from app.flow_row import FlowRow
 from app.intake_window.column_table import NoWheel
-from app.plain_label import plain_label
-from app.theme import Theme
+from app.look.flow_row import FlowRow
+from app.look.plain_label import plain_label
+from app.look.theme import Theme
 
 if TYPE_CHECKING:
     from storage.intake.table import Table

@@ -17,18 +17,18 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.failure import Failure
-from app.fitted import FittedDialog, fit
 from app.intake_window.answers_form import AnswersForm
 from app.intake_window.column_table import ColumnTable
 from app.intake_window.how_written import LARGE, HowWritten
 from app.intake_window.preview_table import PreviewTable
+from app.look.fitted import FittedDialog, fit
+from app.look.theme import Theme
 from app.operations import mapping as operations
 from app.operations.intake import ReadRequest
 from app.operations.mapping import Looked, LookRequest
 from app.operations.outcome import Outcome
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.words import Reader, sentence
 from core.record.message import Message
 from storage.intake.mapping import ColumnUse, Mapping, open_questions

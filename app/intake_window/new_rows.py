@@ -6,8 +6,8 @@ from collections.abc import Iterator
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
-from app import formats
-from app.phrases import channel_name
+from app.look import formats
+from app.telling.phrases import channel_name
 from app.words import Reader
 from core.record.entries import Action, NewEntry
 

@@ -7,8 +7,8 @@ from collections.abc import Sequence
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
 
-from app.plain_label import plain_label
-from app.theme import Theme
+from app.look.plain_label import plain_label
+from app.look.theme import Theme
 
 MOST = 8
 """Identifiers asked for at a time; the next ones follow when these are answered."""

@@ -6,9 +6,9 @@ from dataclasses import replace
 
 from PySide6.QtWidgets import QAbstractItemView, QTableWidget, QTableWidgetItem, QWidget
 
-from app import formats
-from app.copying import can_be_copied
-from app.theme import Theme
+from app.look import formats
+from app.look.copying import can_be_copied
+from app.look.theme import Theme
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
 from core.record.instant import SECOND

@@ -18,13 +18,13 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.copying import can_be_copied
-from app.failure import Failure
-from app.fitted import FittedDialog, fit
+from app.look.copying import can_be_copied
+from app.look.fitted import FittedDialog, fit
+from app.look.theme import Theme
 from app.operations import intake as operations
 from app.operations.outcome import Outcome
-from app.session import SessionModel
-from app.theme import Theme
+from app.session.failure import Failure
+from app.session.model import SessionModel
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:

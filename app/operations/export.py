@@ -88,7 +88,7 @@ def write_deidentified(store: Store, who: str, now: Instant, request: ExportRequ
         RecordError: `episode.unknown`, `channel.unknown`, `export.backwards`, `file.exists`.
         StoreError: `store.export_failed`.
     """
-    from app.export_words import statement_text
+    from app.telling.export_words import statement_text
     from storage.export import deidentified
     from storage.export.whole_file import whole_file
 

@@ -49,7 +49,7 @@ def run(store: Store, who: str, now: Instant, request: ReplayRequest) -> Outcome
         RecordError: `policy.*`, the first fault of a policy; `episode.unknown`; `replay.backwards`;
             `replay.worker_lost`.
     """
-    from app.replay_pool import replay_all
+    from app.policy.replay_pool import replay_all
 
     _check(request)
     for key in request.episodes:

@@ -9,12 +9,12 @@ from typing import Final
 from PySide6.QtCore import QBuffer, QIODevice
 from PySide6.QtGui import QGuiApplication, QPainter, QPdfWriter
 
-from app.caution_texts import CAUTION
-from app.language import in_language as tr
 from app.sheet.blocks import Block, Heading, RuledBox, Signatures, draw_all, height_of
 from app.sheet.gas_table import HEADINGS as GAS_HEADINGS
 from app.sheet.press import LINE, SMALL, SUBTITLE, TITLE, Align, Press, Style
 from app.sheet.printing import DOTS_PER_INCH, set_paper
+from app.telling.caution_texts import CAUTION
+from app.telling.language import in_language as tr
 
 MARGIN: Final = 36.0
 _HEAD, _FOOT = 40.0, 27.0

@@ -6,7 +6,6 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Protocol
 
-from app.language import in_language as tr
 from app.sheet.press import (
     BODY,
     GREY,
@@ -20,6 +19,7 @@ from app.sheet.press import (
     Press,
     Style,
 )
+from app.telling.language import in_language as tr
 
 
 class Block(Protocol):

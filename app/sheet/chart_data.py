@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 import numpy as np
 from numpy.typing import NDArray
 
-from app import formats
+from app.look import formats
 from app.words import Reader
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode, Series

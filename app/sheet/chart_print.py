@@ -8,10 +8,10 @@ from dataclasses import dataclass
 import numpy as np
 from PySide6.QtCore import Qt
 
-from app import formats
-from app.language import in_language as tr
+from app.look import formats
 from app.sheet.chart_data import GAP, Line, ShiftChart, Strip
 from app.sheet.press import GREY, LINE, PALE, SMALL, Align, Press, Style
+from app.telling.language import in_language as tr
 from core.record.instant import HOUR, Instant
 
 LABEL = Style(7.2, True)

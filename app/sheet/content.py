@@ -8,13 +8,13 @@ from __future__ import annotations
 
 from dataclasses import replace
 
-from app import formats
-from app.formats import zone_name
-from app.language import in_language as tr
+from app.look import formats
+from app.look.formats import zone_name
 from app.operations.handover import Handover
 from app.sheet.episode_content import EpisodeWriter
 from app.sheet.shapes import SheetContent
 from app.sheet.ward_content import WardWriter
+from app.telling.language import in_language as tr
 from app.words import Reader
 from core.record.instant import HOUR
 

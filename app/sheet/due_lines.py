@@ -5,9 +5,9 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Sequence
 from typing import Final
 
-from app import formats
-from app.finding_names import due_name
-from app.language import in_language as tr
+from app.look import formats
+from app.telling.finding_names import due_name
+from app.telling.language import in_language as tr
 from app.ward.ordering import GAS
 from app.words import Reader
 from core.figures.shift import ShiftFigures

@@ -4,17 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from app import formats
-from app.certainty import starred
-from app.finding_names import lever_name, marker_name
-from app.language import in_language as tr
-from app.later_words import later_sentence
-from app.lever_words import lever_reasons
+from app.look import formats
 from app.sheet.chart_data import shift_chart
 from app.sheet.gas_table import gas_rows
 from app.sheet.shapes import ChangeLine, EpisodePage, Fact, FlagLine
 from app.sheet.since_lines import since_head, since_lines
 from app.sheet.writer import SheetWriter, opened, quiet_since, strength
+from app.telling.certainty import starred
+from app.telling.finding_names import lever_name, marker_name
+from app.telling.language import in_language as tr
+from app.telling.later_words import later_sentence
+from app.telling.lever_words import lever_reasons
 from app.words import sentence
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures

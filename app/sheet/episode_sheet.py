@@ -5,13 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from typing import Final
 
-from app.formats import ABSENT
-from app.language import in_language as tr
+from app.look.formats import ABSENT
 from app.sheet.blocks import Block, Column, Facts, Flag, Heading, SideBySide, Table, Text
 from app.sheet.gas_table import HEADINGS, GasRow
 from app.sheet.press import BODY, SMALL, STRONG, Align
 from app.sheet.shapes import TIERS, EpisodePage, Fact, FlagLine, PageBrevity
 from app.sheet.writer import lowered
+from app.telling.language import in_language as tr
 
 _CHART_KEY: Final = (
     "grey: pH 7.35 to 7.45, SpO2 target; dashed: changes; hollow: doubtful; bold: newest of the device"

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from app import formats
-from app.language import in_language as tr
+from app.look import formats
+from app.telling.language import in_language as tr
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures

@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
 
-from app.language import in_language as tr
 from app.sheet.blocks import Block, Heading, RuledBox, Signatures, Text, draw_all, height_of
 from app.sheet.chart_print import ChartBlock
 from app.sheet.episode_sheet import lower_blocks, upper_blocks
 from app.sheet.press import STRONG, Press
 from app.sheet.shapes import TIERS, EpisodePage, PageBrevity
+from app.telling.language import in_language as tr
 
 SCALES = (1.06, 1.03, 1.0, 0.97, 0.94, 0.92, 0.9)
 """Print is made no smaller: what has no room then is said shorter."""

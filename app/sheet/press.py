@@ -10,7 +10,7 @@ from functools import lru_cache
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QBrush, QColor, QFont, QFontDatabase, QFontMetricsF, QPainter, QPen, QPolygonF
 
-from app.formats import unbroken
+from app.look.formats import unbroken
 
 POINTS_PER_INCH = 72
 INK, GREY, PALE, LINE = "#000000", "#444444", "#e9e9e9", "#8a8a8a"

@@ -8,14 +8,14 @@ from typing import Final
 from PySide6.QtCore import QBuffer, QIODevice, QMarginsF
 from PySide6.QtGui import QGuiApplication, QPagedPaintDevice, QPageLayout, QPageSize, QPainter, QPdfWriter
 
-from app.language import in_language as tr
+from app.keeping.whole_file import write_whole
 from app.operations.outcome import report
 from app.sheet.blocks import Signatures
 from app.sheet.pages import Fitted, Room, draw_episode, draw_overflow, fit_episode
 from app.sheet.press import SMALL, SUBTITLE, TITLE, Align, Press, Style
 from app.sheet.shapes import EpisodePage, SheetContent
 from app.sheet.ward_sheet import draw_ward, split_ward
-from app.whole_file import write_whole
+from app.telling.language import in_language as tr
 from core.record.message import refuse
 
 PAPERS: Final = {"A4": QPageSize.PageSizeId.A4, "Letter": QPageSize.PageSizeId.Letter}

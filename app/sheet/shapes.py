@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from app.caution_texts import CAUTION
 from app.sheet.chart_data import ShiftChart
 from app.sheet.gas_table import GasRow
+from app.telling.caution_texts import CAUTION
 
 Fact = tuple[str, str]
 TIERS = ("escalate", "concern", "remark")

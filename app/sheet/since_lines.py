@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from typing import Final
 
-from app import formats
-from app.finding_names import due_name, marker_name
-from app.language import in_language as tr
+from app.look import formats
 from app.operations.last_handover import Handed
-from app.phrases import channel_name
 from app.sheet.writer import lowered, opened, state_head
+from app.telling.finding_names import due_name, marker_name
+from app.telling.language import in_language as tr
+from app.telling.phrases import channel_name
 from app.words import Reader
 from app.words.figure_lines import FigureLines
 from core.figures.since_handover import FactChange, SinceHandover, Verdict

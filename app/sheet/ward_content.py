@@ -4,10 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from app import formats
-from app.formats import told_words
-from app.headline import headline
-from app.language import in_language as tr
+from app.look import formats
+from app.look.formats import told_words
 from app.sheet.due_lines import due_short, gases_due, others_due, skin_line
 from app.sheet.shapes import WardPage, WardRow
 from app.sheet.since_lines import compared_with
@@ -21,6 +19,8 @@ from app.sheet.writer import (
     state_head,
     strength,
 )
+from app.telling.headline import headline
+from app.telling.language import in_language as tr
 from app.ward.ordering import GAS
 from app.words import sentence
 from core.figures.shift import ShiftFigures

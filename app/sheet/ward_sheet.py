@@ -5,10 +5,10 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from app.language import in_language as tr
 from app.sheet.blocks import Block, Heading, Signatures, Text, draw_all, draw_tier, height_of
 from app.sheet.press import BODY, GREY, INK, LINE, PALE, SMALL, STRONG, Align, Press, Style
 from app.sheet.shapes import WardPage, WardRow
+from app.telling.language import in_language as tr
 
 SCALES = (1.06, 1.03, 1.0, 0.97, 0.94, 0.92, 0.9)
 LABEL = Style(10, True)

@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Final
 
-from app import formats
-from app.certainty import starred
-from app.finding_names import marker_name
-from app.headline import ever_acidotic
-from app.language import in_language as tr
+from app.look import formats
 from app.operations.handover import Handover
+from app.telling.certainty import starred
+from app.telling.finding_names import marker_name
+from app.telling.headline import ever_acidotic
+from app.telling.language import in_language as tr
 from app.words import Reader
 from app.words.figure_lines import FigureLines
 from core.figures.shift import ShiftFigures

@@ -10,10 +10,10 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
 from app.chart.marks import draw_card, fitted, pennant, solid_pen, verdict_sign
-from app.formats import minutes, span
-from app.phrases import translate
+from app.look.formats import minutes, span
+from app.look.theme import Theme, Tier, Verdict, verdict_of, verdict_word
 from app.statistics.measures import clock_name, flag_name, measures, ordered_flags
-from app.theme import Theme, Tier, Verdict, verdict_of, verdict_word
+from app.telling.phrases import translate
 from app.words import Reader
 from core.figures.ward_statistics import Waits, WardStatistics
 

@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from app.explain import Explanation
-from app.phrases import translate
+from app.explain.explanation import Explanation
 from app.statistics.measures import Measure
+from app.telling.phrases import translate
 from app.words import Reader
 from core.figures.ward_statistics import WardStatistics
 

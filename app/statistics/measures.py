@@ -7,12 +7,12 @@ import io
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from app.certainty import star_note, starred
-from app.finding_names import marker_name
-from app.formats import fixed, hours, minutes, trimmed, wall
-from app.names_by_policy import in_force
-from app.phrases import translate
-from app.theme import Tier, tier_word, verdict_of, verdict_word
+from app.look.formats import fixed, hours, minutes, trimmed, wall
+from app.look.theme import Tier, tier_word, verdict_of, verdict_word
+from app.policy.names import in_force
+from app.telling.certainty import star_note, starred
+from app.telling.finding_names import marker_name
+from app.telling.phrases import translate
 from app.words import Reader
 from core.figures.ward_statistics import FlagCount, Waits, WardStatistics
 from core.record.local_time import zoned_iso

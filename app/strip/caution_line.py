@@ -5,7 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import QSize, Qt
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QSizePolicy, QWidget
 
-from app.cautions import caution_in_sight
+from app.telling.cautions import caution_in_sight
 
 _SHARE = 0.3
 """Of the window's width: with large text it takes two lines rather than the room of what the strip says."""

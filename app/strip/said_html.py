@@ -6,7 +6,7 @@ from html import escape
 
 from PySide6.QtCore import QCoreApplication
 
-from app.formats import unbroken
+from app.look.formats import unbroken
 from app.strip.preview_words import PreviewWords
 
 translate = QCoreApplication.translate

@@ -6,10 +6,10 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QBoxLayout, QFrame, QHBoxLayout, QLabel, QSizePolicy, QVBoxLayout
 
+from app.look.theme import Theme
 from app.strip.caution_line import with_caution
 from app.strip.line_field import LineField
 from app.strip.one_key_buttons import OneKeyButtons
-from app.theme import Theme
 
 LEAST_LINE = 200
 """Least width of the line at 100 % beside the keys' buttons; where it has less they stand under it."""

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from app.certainty import STAR
+from app.telling.certainty import STAR
 
 FLAG_COLUMN = 38
 """Letters that the flags' column holds at the least size of the window."""

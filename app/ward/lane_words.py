@@ -7,12 +7,13 @@ from dataclasses import dataclass, replace
 
 from PySide6.QtCore import QCoreApplication
 
-from app.certainty import starred
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
-from app.course import Course
-from app.finding_names import due_name, marker_name
-from app.formats import clock, minutes, opened
-from app.headline import (
+from app.episode.course import Course
+from app.look.formats import clock, minutes, opened
+from app.look.theme import Tier, Verdict, tier_word
+from app.telling.certainty import starred
+from app.telling.finding_names import due_name, marker_name
+from app.telling.headline import (
     gas_state_word,
     headline,
     judged_sign,
@@ -22,7 +23,7 @@ from app.headline import (
     verdict_sentences,
     verdict_with_loss,
 )
-from app.phrases import (
+from app.telling.phrases import (
     change_sentence,
     change_word,
     gas_name,
@@ -34,8 +35,7 @@ from app.phrases import (
     support_now,
     verdict_or_none,
 )
-from app.presumed import silent_word
-from app.theme import Tier, Verdict, tier_word
+from app.telling.presumed import silent_word
 from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QWidget
 
-from app.certainty import star_note
-from app.signs import Sign
-from app.theme import GasState, Theme, Verdict, state_word, verdict_word
+from app.look.signs import Sign
+from app.look.theme import GasState, Theme, Verdict, state_word, verdict_word
+from app.telling.certainty import star_note
 
 FILLINGS = (Verdict.BETTER, Verdict.WORSE, Verdict.MIXED, Verdict.NO_CLEAR_CHANGE)
 

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QCoreApplication
 
-from app.formats import clock, wall
+from app.look.formats import clock, wall
 from core.record.episode import Episode
 from core.record.instant import DAY, Instant
 

@@ -7,8 +7,8 @@ from collections.abc import Mapping, Sequence
 from enum import StrEnum
 from types import MappingProxyType
 
-from app.headline import ever_acidotic, headline
-from app.theme import Verdict
+from app.look.theme import Verdict
+from app.telling.headline import ever_acidotic, headline
 from core.judgement.now import headline_response
 from core.judgement.shapes import DueFigure, EpisodeFigures
 from core.record.instant import Instant

@@ -7,8 +7,8 @@ from PySide6.QtGui import QPainter, QPaintEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
 
 from app.chart.marks import pennant
-from app.formats import inert
-from app.theme import Theme, Tier
+from app.look.formats import inert
+from app.look.theme import Theme, Tier
 
 
 class _Pennant(QWidget):

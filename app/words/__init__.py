@@ -1,6 +1,6 @@
 """Every sentence: a message key with named values becomes text. The one place where core's findings get words.
 
-Text made here is plain. Where Qt could take it for rich text, pass it through `app.formats.inert`.
+Text made here is plain. Where Qt could take it for rich text, pass it through `app.look.formats.inert`.
 """
 
 from __future__ import annotations

@@ -5,8 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 
-from app import formats
-from app.presumed import presumed_word
+from app.look import formats
+from app.telling.presumed import presumed_word
 from app.words import Reader, sentence
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
@@ -268,8 +268,8 @@ class FigureLines:
 
     def flag_head(self, f: FlagFigure) -> str:
         """A flag's name with its tier, since when, and what became of it."""
-        from app.certainty import starred
-        from app.finding_names import marker_name
+        from app.telling.certainty import starred
+        from app.telling.finding_names import marker_name
 
         name = starred(marker_name(f.marker, self.reader), f.sure)
         text = f"{self.tr(f.tier).upper()} {name}, {self.tr('since')} {self.reader.time(f.since)}"
@@ -294,7 +294,7 @@ class FigureLines:
 
     def evidence(self, f: FlagFigure) -> str:
         """Why the flag is met."""
-        from app.flag_spans import with_gaps
+        from app.telling.flag_spans import with_gaps
 
         told = (*(sentence(m, self.reader) for m in f.evidence), with_gaps(f, self.reader))
         return " ".join(part for part in told if part)
@@ -306,7 +306,7 @@ class FigureLines:
 
     def due(self, d: DueFigure) -> str:
         """A due item: what, by when, its state and why."""
-        from app.finding_names import due_name
+        from app.telling.finding_names import due_name
 
         state = {"overdue": self.tr("OVERDUE"), "awaiting result": self.tr("awaiting result")}.get(d.state, "")
         head = f"{due_name(d.what, self.reader)} {self.tr('by')} {self.reader.time(d.due_until)}"

@@ -5,7 +5,7 @@ Screen, command line and printed sheet put their own words around them, so that 
 
 from __future__ import annotations
 
-from app.formats import fixed, gas_pressure, trimmed
+from app.look.formats import fixed, gas_pressure, trimmed
 from core.judgement.shapes import GasFigure
 
 

@@ -21,8 +21,8 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from math import isnan
 
-from app import formats
-from app.language import in_language
+from app.look import formats
+from app.telling.language import in_language
 from core.record.channels import CHANNELS
 from core.record.instant import Instant
 from core.record.message import Value
@@ -193,7 +193,7 @@ def _name_from(kind: str) -> Writer:
     """The name of a marker or due item."""
 
     def written(value: Value, _values: Mapping[str, Value], reader: Reader) -> str:
-        from app.names_by_policy import by_policy
+        from app.policy.names import by_policy
         from app.words.names import TEMPLATES
 
         name = reader.translate(TEMPLATES.get(f"{kind}.{value}", str(value).replace("_", " ")))

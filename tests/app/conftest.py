@@ -4,7 +4,7 @@ from collections.abc import Iterator
 
 import pytest
 
-from app.names_by_policy import use
+from app.policy.names import use
 from core.judgement.policy import shipped_policy
 
 

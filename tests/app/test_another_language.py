@@ -11,7 +11,7 @@ from PySide6.QtCore import QTranslator
 from PySide6.QtWidgets import QTableWidget, QWidget
 
 from app.forms.readiness import ITEMS, MEASURED
-from app.screen_dialogs import LOG_FILE, TABLE_FILE, dialogs
+from app.window.screen_dialogs import LOG_FILE, TABLE_FILE, dialogs
 from core.judgement.policy import shipped_text
 from tests.support.open_window import BEDS, make_store, open_window, settled
 

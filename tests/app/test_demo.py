@@ -6,7 +6,7 @@ import pytest
 
 import sample_data
 from app import demo
-from app.local_zone import is_zone
+from app.session.local_zone import is_zone
 from core.record.instant import HOUR
 from storage.errors import StoreError
 from storage.store import Store

@@ -8,11 +8,12 @@ from pathlib import Path
 import pytest
 from pytestqt.qtbot import QtBot
 
-from app.clock import Clock
-from app.formats import clock as wall_clock
+from app.look.formats import clock as wall_clock
 from app.operations import entry, episode, figures
-from app.runner import Runner
-from app.session import Changed, Session, SessionModel, What
+from app.session.clock import Clock
+from app.session.model import SessionModel
+from app.session.runner import Runner
+from app.session.state import Changed, Session, What
 from core.judgement.flag_history import history_of
 from core.judgement.shapes import DueFigure
 from core.record.instant import HOUR, MINUTE, Instant, parse

@@ -19,8 +19,8 @@ from PySide6.QtWidgets import (
 )
 
 import app
-from app.preferences import Preferences
-from app.screen_dialogs import dialogs
+from app.keeping.preferences import Preferences
+from app.window.screen_dialogs import dialogs
 from tests.app.test_accessible import PAGES, unspoken
 from tests.support.open_window import make_store, open_window, settled
 

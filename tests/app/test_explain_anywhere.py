@@ -3,7 +3,7 @@
 import pytest
 from PySide6.QtCore import Qt
 
-from app.explain_dialog import ExplainDialog
+from app.explain.dialog import ExplainDialog
 from tests.support.open_window import make_store, open_window, settled
 
 

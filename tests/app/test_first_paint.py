@@ -12,8 +12,8 @@ from functools import partial
 from PySide6.QtCore import QEventLoop
 from PySide6.QtWidgets import QApplication
 app = QApplication([])
-from app.preferences import Preferences
-from app.window import MainWindow
+from app.keeping.preferences import Preferences
+from app.window.main import MainWindow
 window = MainWindow(Preferences(cautions_seen=True))
 window.show()
 window.doers.file.open_path(Path(sys.argv[1]))
@@ -30,7 +30,7 @@ def test_no_slow_library_on_the_way_to_the_first_picture(tmp_path):
     from tests.support.open_window import make_store
 
     store = make_store(tmp_path / "ward.luffmark")
-    slow = ("pandas", "scipy", "alembic", "pyqtgraph", "app.screens", "app.demo", "sample_data")
+    slow = ("pandas", "scipy", "alembic", "pyqtgraph", "app.window.screens", "app.demo", "sample_data")
     root = Path(__file__).parents[2]
     done = subprocess.run(
         [sys.executable, "-c", PAINT, str(store), *slow], cwd=root, capture_output=True, text=True, timeout=120,

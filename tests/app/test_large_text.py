@@ -3,8 +3,8 @@
 import pytest
 from PySide6.QtWidgets import QAbstractButton, QLabel, QWidget
 
-from app.flow_row import FlowRow
-from app.preferences import Preferences
+from app.keeping.preferences import Preferences
+from app.look.flow_row import FlowRow
 from tests.support.open_window import make_store, open_window, settled
 
 

@@ -7,14 +7,15 @@ import pytest
 from PySide6.QtCore import QDir, Qt
 from PySide6.QtWidgets import QApplication, QWidget
 
-from app.clock import still
-from app.failure import failure_of
+from app.keeping.preferences import Preferences
 from app.operations.entry import LineRequest, log_line
 from app.operations.episode import BeginRequest, begin
-from app.preferences import Preferences
-from app.runner import Runner
-from app.session import Session, SessionModel
-from app.window import MainWindow
+from app.session.clock import still
+from app.session.failure import failure_of
+from app.session.model import SessionModel
+from app.session.runner import Runner
+from app.session.state import Session
+from app.window.main import MainWindow
 from storage import backup_rotation
 from storage.store import Store, StoreError
 from tests.support.open_window import NOW, ZONE, settled, until

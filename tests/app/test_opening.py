@@ -4,8 +4,8 @@ import pytest
 from PySide6.QtCore import Qt
 
 from app.dialogs.passphrase import OpenStoreDialog
-from app.preferences import Preferences
-from app.window import MainWindow
+from app.keeping.preferences import Preferences
+from app.window.main import MainWindow
 from storage.keys import envelope_path
 from storage.store import Store
 from tests.support.open_window import NOW, make_store, open_window, settled, until

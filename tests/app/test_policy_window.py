@@ -5,11 +5,11 @@ from pathlib import Path
 import pytest
 from pytestqt.qtbot import QtBot
 
-from app.finding_names import marker_name
 from app.operations import policy
-from app.policy_view import PolicyDialog
-from app.policy_words import LIMITS, rules
-from app.window import MainWindow
+from app.policy.view import PolicyDialog
+from app.policy.words import LIMITS, rules
+from app.telling.finding_names import marker_name
+from app.window.main import MainWindow
 from app.words import Reader
 from core.judgement.policy import policy_hash, read_policy, shipped_policy, shipped_text
 from core.judgement.policy_check import check

@@ -17,9 +17,10 @@ from app.dialogs.restore import RestoreDialog
 from app.dialogs.salvage import SalvageDialog
 from app.forms.begin_form import BeginForm
 from app.forms.gas_form import GasForm
-from app.preferences import Preferences, load
-from app.theme import THEMES, apply_theme
-from app.window import MainWindow
+from app.keeping.preferences import Preferences, load
+from app.look.style_sheet import apply_theme
+from app.look.theme import THEMES
+from app.window.main import MainWindow
 from storage import people
 from storage.engine import PAGE_BYTES
 from storage.keys import Cost, envelope_path

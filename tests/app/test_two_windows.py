@@ -4,11 +4,12 @@ from functools import partial
 
 from PySide6.QtCore import Qt
 
-from app.clock import still
-from app.preferences import Preferences
-from app.runner import Runner
-from app.session import POLL_MS, Session, SessionModel
-from app.window import MainWindow
+from app.keeping.preferences import Preferences
+from app.session.clock import still
+from app.session.model import POLL_MS, SessionModel
+from app.session.runner import Runner
+from app.session.state import Session
+from app.window.main import MainWindow
 from core.record.knowledge import standing
 from storage.engine import raw_connection
 from storage.store import Store

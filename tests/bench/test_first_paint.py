@@ -34,7 +34,7 @@ import sys
 from pathlib import Path
 from PySide6.QtCore import QEventLoop
 from PySide6.QtWidgets import QApplication
-from app.start import make_window
+from app.window.start import make_window
 window = make_window()
 window.show()
 window.doers.file.open_path(Path(sys.argv[1]))

@@ -13,7 +13,7 @@ import pytest
 
 from app.chart.shapes import PanelSpec, Scale, StackSpec, Trace
 from app.chart.stack import PanelStack
-from app.theme import LIGHT
+from app.look.theme import LIGHT
 
 SECOND, HOUR = 1_000_000, 3_600_000_000
 ORIGIN = 1_774_640_000 * SECOND

@@ -17,13 +17,14 @@ from PySide6.QtCore import QEventLoop
 from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
-from app.clock import still
 from app.operations import entry, episode
 from app.operations.entry import LineRequest
 from app.operations.episode import BeginRequest
-from app.runner import Runner
-from app.session import Session, SessionModel
-from app.window import MainWindow
+from app.session.clock import still
+from app.session.model import SessionModel
+from app.session.runner import Runner
+from app.session.state import Session
+from app.window.main import MainWindow
 from core.record.entries import NewEntry
 from core.record.instant import DAY, HOUR, parse
 from storage.draft_batch import DraftBatch, DraftEntry

@@ -9,15 +9,17 @@ from pathlib import Path
 
 from pytestqt.qtbot import QtBot
 
-from app.clock import Clock, still
+from app.keeping.preferences import Preferences
+from app.look.style_sheet import apply_theme
+from app.look.theme import THEMES
 from app.operations import entry, episode
 from app.operations.entry import LineRequest
 from app.operations.episode import BeginRequest
-from app.preferences import Preferences
-from app.runner import Runner
-from app.session import Session, SessionModel
-from app.theme import THEMES, apply_theme
-from app.window import MainWindow
+from app.session.clock import Clock, still
+from app.session.model import SessionModel
+from app.session.runner import Runner
+from app.session.state import Session
+from app.window.main import MainWindow
 from core.record.instant import parse
 from storage.store import Store
 

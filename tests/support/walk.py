@@ -17,8 +17,8 @@ from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication, QCheckBox, QDialog, QFileDialog, QLineEdit, QWidget
 from pytestqt.qtbot import QtBot
 
-from app.preferences import load
-from app.window import MainWindow
+from app.keeping.preferences import load
+from app.window.main import MainWindow
 from tests.support.open_window import until
 
 D = TypeVar("D", bound=QDialog)

@@ -28,7 +28,7 @@ from app.chart.shapes import (
     Tick,
     Trace,
 )
-from app.theme import GasState, Tier, Verdict
+from app.look.theme import GasState, Tier, Verdict
 
 MINUTE = 60_000_000
 START = 1_774_640_000_000_000

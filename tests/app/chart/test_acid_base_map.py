@@ -6,7 +6,7 @@ import pytest
 from PySide6.QtCore import QPointF, QRectF, Qt
 
 from app.chart.acid_base_map import AcidBaseMap
-from app.theme import DARK, LIGHT
+from app.look.theme import DARK, LIGHT
 
 
 @pytest.fixture

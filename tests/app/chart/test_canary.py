@@ -11,7 +11,7 @@ from pyqtgraph.exporters import SVGExporter
 from PySide6.QtGui import QPainter, QPdfWriter
 
 from app.chart.stack import PanelStack
-from app.theme import LIGHT
+from app.look.theme import LIGHT
 from tests.app.chart.conftest import START, at
 
 

@@ -9,7 +9,7 @@ from PySide6.QtGui import QFontMetricsF
 
 from app.chart.event_rail import placed_words
 from app.chart.shapes import Tick
-from app.theme import LIGHT
+from app.look.theme import LIGHT
 
 WORDS = st.sampled_from(["Gas sent", "Mask on", "Reviewed: tired, secretions thick, plan agreed with the team", "x"])
 

@@ -9,7 +9,7 @@ from app.chart.lane_layout import geometry_of
 from app.chart.lane_painter import LanePainter
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LaneItem, LaneKind
-from app.theme import DARK, LIGHT
+from app.look.theme import DARK, LIGHT
 from tests.app.chart.conftest import at
 
 

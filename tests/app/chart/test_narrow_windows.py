@@ -11,7 +11,7 @@ from PySide6.QtCore import Qt
 from app.chart.ribbon import placed_beside
 from app.chart.shapes import StackSpec, Tick
 from app.chart.stack import PanelStack
-from app.theme import LIGHT, GasState
+from app.look.theme import LIGHT, GasState
 from tests.app.chart.conftest import START, ZONE, at
 from tests.app.chart.test_panel import image_of
 

@@ -10,7 +10,7 @@ from app.chart.brackets import rows_of
 from app.chart.render import image_of
 from app.chart.shapes import Bracket, Drawn, Look, PanelSpec, Scale, StackSpec, Trace
 from app.chart.stack import PanelStack
-from app.theme import LIGHT, THEMES, Verdict
+from app.look.theme import LIGHT, THEMES, Verdict
 from tests.app.chart.conftest import MINUTE, START, ZONE, at
 
 

@@ -8,7 +8,7 @@ import pytest
 from pypdf import PdfReader
 
 from app.chart.render import image_of, pdf_of, svg_of
-from app.theme import DARK, LIGHT
+from app.look.theme import DARK, LIGHT
 
 
 @pytest.fixture(params=["stack_spec", "lanes_spec", "map_spec"])

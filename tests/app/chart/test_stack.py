@@ -9,7 +9,7 @@ from PySide6.QtWidgets import QApplication
 
 from app.chart.clock_window import LEAST_SPAN
 from app.chart.stack import PanelStack
-from app.theme import DARK, LIGHT
+from app.look.theme import DARK, LIGHT
 from tests.app.chart.conftest import START, at
 
 

@@ -10,8 +10,8 @@ from pypdf import PdfReader
 
 from app import demo
 from app.cli import main
+from app.episode.panels import Panel, PanelSet, to_json, to_toml
 from app.operations import panel
-from app.panels import Panel, PanelSet, to_json, to_toml
 from storage.store import Store
 
 SPAN = ("--from", "2026-03-27T19:30:00Z", "--to", "2026-03-28T05:30:00Z")

@@ -4,11 +4,11 @@ from pathlib import Path
 
 import pytest
 
-from app import preferences as kept
-from app import start
 from app.cli import main
 from app.commands.context import default_store
-from app.preferences import Preferences
+from app.keeping import preferences as kept
+from app.keeping.preferences import Preferences
+from app.window import start
 
 
 @pytest.fixture

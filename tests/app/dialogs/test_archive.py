@@ -1,8 +1,8 @@
 """Ended episodes from the window: archived, opened again for reading, and removed when their time is over."""
 
-from app.clock import still
 from app.dialogs.archive import ArchiveDialog
 from app.operations.entry import LineRequest, log_line
+from app.session.clock import still
 from core.record.entries import NewEntry
 from core.record.instant import DAY, HOUR
 from storage import archive

@@ -10,7 +10,7 @@ from app.dialogs.intake import IntakeDialog
 from app.dialogs.panel_editor import PanelEditor
 from app.dialogs.sign_in import SignInDialog
 from app.dialogs.table import TableDialog
-from app.theme import LIGHT
+from app.look.theme import LIGHT
 from tests.support.open_window import NOW, make_store, open_window, settled, until
 
 HEAD = "episode,at,channel,value,unit,by,note\n"
@@ -430,8 +430,8 @@ def test_signing_in_takes_initials(qtbot):
 
 
 def test_help_and_about_open_and_close(qtbot, window):
-    from app.about import AboutDialog
-    from app.help_dialog import HelpDialog
+    from app.window.about import AboutDialog
+    from app.window.help_dialog import HelpDialog
 
     qtbot.keyClick(window, Qt.Key.Key_F1)
     dialog = dialog_of(window, HelpDialog)

@@ -3,8 +3,8 @@
 import pytest
 from PySide6.QtWidgets import QAbstractButton, QApplication, QDialog, QLabel, QScrollArea
 
-from app.fitted import MARGIN
-from app.preferences import Preferences
+from app.keeping.preferences import Preferences
+from app.look.fitted import MARGIN
 from tests.support.open_window import make_store, open_window, settled
 
 DIALOGS = (

@@ -3,8 +3,8 @@
 import pytest
 
 from app.dialogs.passphrase import RecoveryCodeDialog
-from app.preferences import Preferences
-from app.window import MainWindow
+from app.keeping.preferences import Preferences
+from app.window.main import MainWindow
 from storage import people
 from storage.keys import Cost
 from storage.store import Store

@@ -7,8 +7,8 @@ from PySide6.QtGui import QGuiApplication
 from PySide6.QtPrintSupport import QPrinter
 from PySide6.QtWidgets import QLineEdit
 
-from app.preferences import Preferences
-from app.window import MainWindow
+from app.keeping.preferences import Preferences
+from app.window.main import MainWindow
 from storage.opening import is_encrypted
 from storage.store import Store
 from tests.support.open_window import NOW, settled, until

@@ -4,13 +4,14 @@ from functools import partial
 
 import pytest
 
-from app.clock import still
 from app.dialogs.second_passphrase import SecondPassphraseDialog
+from app.keeping.preferences import Preferences
 from app.operations import passphrase as operations
-from app.preferences import Preferences
-from app.runner import Runner
-from app.session import Session, SessionModel
-from app.window import MainWindow
+from app.session.clock import still
+from app.session.model import SessionModel
+from app.session.runner import Runner
+from app.session.state import Session
+from app.window.main import MainWindow
 from core.record.message import RecordError
 from storage import people
 from storage.errors import StoreError

@@ -5,8 +5,8 @@ from PySide6.QtCore import Qt, QTimer
 from PySide6.QtWidgets import QApplication
 
 from app.dialogs.sign_in import SignInDialog, logged_lately
+from app.look.theme import LIGHT
 from app.operations import entry
-from app.theme import LIGHT
 from core.record.instant import MINUTE
 from storage.store import Store
 from tests.support.open_window import NOW, ZONE, make_store, open_window, settled

@@ -6,8 +6,8 @@ from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import QApplication
 
 from app.episode.figure_list import FigureFact, FoldHead
-from app.explain_dialog import ExplainDialog
-from app.fact import Fact
+from app.explain.dialog import ExplainDialog
+from app.explain.fact import Fact
 from tests.support.open_window import make_store, open_window, settled, until
 
 

@@ -6,8 +6,8 @@ import pytest
 from pytestqt.qtbot import QtBot
 
 from app.episode.flag_history import closed_flags, history_fact, line_of, word_lines
+from app.look.theme import THEMES
 from app.operations import correction, entry, figures, flag
-from app.theme import THEMES
 from app.words import Reader
 from core.judgement.shapes import EpisodeFigures, FlagFigure
 from core.record.instant import HOUR, MINUTE

@@ -5,8 +5,8 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from app.episode.panels import Panel, drawable
 from app.episode.scales import USUAL, scales_of, widened
-from app.panels import Panel, drawable
 
 
 @given(st.floats(-50, 50), st.floats(0.5, 100), st.lists(st.floats(-200, 900), min_size=1, max_size=30))

@@ -6,8 +6,8 @@ import pytest
 from PySide6.QtWidgets import QLabel
 
 from app.episode.side import SideColumn
-from app.formats import plain
-from app.theme import LIGHT
+from app.look.formats import plain
+from app.look.theme import LIGHT
 from app.words import Reader
 from core.judgement.policy import shipped_policy
 from core.judgement.shapes import EpisodeFigures

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from app.chart.shapes import Drawn, Look
-from app.course import course_of
+from app.episode.course import course_of
 from app.episode.traces import TraceMaker, runs_above, shown_as
 from core.record.entries import Action, recorded
 from core.record.episode import build_episode
@@ -98,6 +98,6 @@ def test_runs_above():
 
 
 def test_every_drawable_channel_has_a_unit():
-    from app.panels import drawable
+    from app.episode.panels import drawable
 
     assert all(shown_as(c, "kPa").unit for c in drawable())

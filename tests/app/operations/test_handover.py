@@ -8,10 +8,10 @@ from pathlib import Path
 
 import pytest
 
+from app.handover.plain import handover_text
 from app.operations import entry, episode
 from app.operations import handover as operations
 from app.operations.last_handover import facts_of
-from app.plain_handover import handover_text
 from app.sheet.content import sheet_content
 from app.words import Reader
 from core.record.instant import HOUR, MINUTE, Instant, parse

@@ -5,10 +5,10 @@ from io import BytesIO
 import pytest
 from pypdf import PdfReader
 
-from app.caution_texts import CAUTION
 from app.sheet.blank import CARE, FACTS, blank_bytes
 from app.sheet.gas_table import HEADINGS
 from app.sheet.printing import PAPERS
+from app.telling.caution_texts import CAUTION
 from core.record.message import RecordError
 
 

@@ -12,9 +12,9 @@ from pypdf import PdfReader
 from app import demo
 from app.operations import correction, entry, episode
 from app.operations import handover as operations
+from app.session.shift import shift_of
 from app.sheet.content import sheet_content
 from app.sheet.printing import pdf_bytes
-from app.shift import shift_of
 from app.words import Reader
 from core.judgement.policy import policy_hash, shipped_text
 from core.record.instant import HOUR, MINUTE, parse

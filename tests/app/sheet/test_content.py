@@ -8,16 +8,16 @@ import pytest
 
 from app import demo
 from app.handover.page_html import page_html
+from app.handover.plain import handover_text
+from app.look.theme import LIGHT
 from app.operations import entry, episode
 from app.operations import handover as operations
 from app.operations.handover import Handover
-from app.plain_handover import handover_text
 from app.sheet.blocks import Text
 from app.sheet.content import sheet_content
 from app.sheet.episode_sheet import flag_blocks
 from app.sheet.shapes import EpisodePage, PageBrevity, SheetContent, WardRow
 from app.sheet.writer import is_limited, limits_of_care
-from app.theme import LIGHT
 from app.words import Reader
 from core.record.instant import HOUR, parse
 from core.record.message import RecordError

@@ -12,10 +12,10 @@ from pypdf import PdfReader
 from PySide6.QtWidgets import QApplication
 
 from app import demo
-from app.formats import ABSENT
+from app.handover.plain import handover_text
+from app.look.formats import ABSENT
 from app.operations import handover as operations
 from app.operations.outcome import CancelledError, watched
-from app.plain_handover import handover_text
 from app.sheet.content import sheet_content
 from app.sheet.gas_table import GasRow
 from app.sheet.press import LEAST_PRINT

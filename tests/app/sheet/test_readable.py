@@ -5,9 +5,9 @@ import re
 import pytest
 
 from app.handover.page_html import page_html
+from app.look.theme import LEAST_TEXT_CONTRAST, THEMES, contrast
 from app.sheet.press import GREY, INK, PALE
 from app.sheet.shapes import SheetContent
-from app.theme import LEAST_TEXT_CONTRAST, THEMES, contrast
 
 _COLOUR = re.compile(r"(?<![-\w])color:(#[0-9a-f]{6})")
 

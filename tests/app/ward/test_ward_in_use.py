@@ -3,11 +3,11 @@
 import pytest
 from PySide6.QtCore import Qt
 
-from app import clock
 from app.chart.shapes import LaneKind
-from app.clock import Clock
 from app.dialogs.correct import CorrectDialog
 from app.operations import entry, episode
+from app.session import clock
+from app.session.clock import Clock
 from core.record.instant import MINUTE
 from storage.store import Store
 from tests.support.open_window import NOW, make_store, open_window, settled, until

@@ -9,8 +9,8 @@ from typing import Any
 import pytest
 
 from app import demo
+from app.figures.plain import episode_text
 from app.operations import figures as operations
-from app.plain_figures import episode_text
 from app.words import Reader, sentence
 from core.record.instant import HOUR
 from core.record.message import Message

@@ -1,0 +1,169 @@
+"""Who may see the window, and who logs: the lock, signing in, and the ways in when a PIN is missing."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QObject
+
+from app.keeping.lock import IdleWatch, Lock
+from app.keeping.lock_page import Way, Why
+from app.words import sentence
+from core.record.message import Message
+
+if TYPE_CHECKING:
+    from app.dialogs.pin_by_code import PinByCodeDialog
+    from app.operations.outcome import Outcome
+    from app.session.failure import Failure
+    from app.session.model import SessionModel
+    from app.window.main import MainWindow
+
+
+class Locking(QObject):
+    """Locks and unlocks a window. `opened` and `closing` tell it which session it guards."""
+
+    def __init__(self, window: MainWindow) -> None:
+        super().__init__(window)
+        self._window = window
+        self._model: SessionModel | None = None
+        self._proven = ""
+        self.by_code: PinByCodeDialog | None = None
+        self.lock = Lock(window)
+        page = self.lock.page
+        page.pin_given.connect(self._pin_given)
+        page.passphrase_given.connect(self._passphrase_given)
+        page.opened.connect(self._unlocked)
+        page.code_wanted.connect(self.ask_code)
+        self.watch = IdleWatch(self)
+        self.watch.idle.connect(self.idle)
+
+    def opened(self, model: SessionModel) -> None:
+        """A session is shown."""
+        self._model = model
+
+    def closing(self) -> None:
+        """The session ends."""
+        self.watch.stop()
+        self._model, self._proven = None, ""
+        if self.by_code is not None:
+            self.by_code.reject()
+        self.lock.unlock()
+
+    @property
+    def way(self) -> Way:
+        """What opens the window again once it is locked."""
+        if self._model is None:
+            return Way.NOTHING
+        session = self._model.session
+        if session.has_people:
+            return Way.PIN
+        return Way.PASSPHRASE if session.encrypted else Way.NOTHING
+
+    def lock_now(self, person: str = "", why: Why = Why.ASKED) -> None:
+        """Hide every screen until somebody proves who they are."""
+        if self._model is None or self.lock.is_locked:
+            return
+        self.lock.lock()
+        more = ""
+        if self._window.doers.review.forget_opened():
+            more = self.tr("A closed handover was opened in another program: close it there too.")
+        self.lock.page.begin(self.way, person, why, minutes=self._window.preferences.lock_minutes,
+                             has_code=True, more=more)  # fmt: skip
+        self._window.tell_locked()
+
+    def set_minutes(self, minutes: int) -> None:
+        """Lock after another time."""
+        if self._model is not None and self.way is not Way.NOTHING:
+            self.watch.start(minutes)
+
+    def idle(self) -> None:
+        """Nobody was there for too long."""
+        if self._model is not None and self.way is not Way.NOTHING:
+            self._window.keeping.lock_now(self._model.session.person, Why.IDLE)
+
+    def ask_for_proof(self) -> None:
+        """Where people sign in, nobody logs who has not: the store was opened, or the first person was added."""
+        if self._model is None or self.lock.is_locked:
+            return
+        session = self._model.session
+        if session.has_people and (not self._proven or session.person != self._proven):
+            self._window.keeping.lock_now(session.person, Why.BEGIN)
+            self._model.set_person("")
+
+    def take_proof(self, initials: str) -> None:
+        """Somebody has just proved who they are in another way: they made their PIN."""
+        from app.operations import people
+
+        if self._model is not None:
+            self._proven = initials
+            self._model.set_person(initials)
+            self._window.prefer(person=initials)
+            self._model.ask(people.code_once, None, done=self._code_told)
+
+    def _code_told(self, outcome: Outcome[str]) -> None:
+        """A plain store has no recovery code of its own: its first ward lead is shown one, this once."""
+        if outcome.value:
+            self._window.doers.store.show_code(outcome.value, opens=False)
+
+    # by PIN
+
+    def _pin_given(self, initials: str, pin: str) -> None:
+        from app.operations import people
+
+        if self._model is not None:
+            self._model.ask(people.sign_in, people.SignIn(initials, pin), done=self._signed_in, failed=self._refused)
+
+    def _signed_in(self, outcome: Outcome[str]) -> None:
+        if self._model is not None:
+            self.take_proof(outcome.value)
+            self._unlocked()
+
+    # by passphrase or code
+
+    def _passphrase_given(self, secret: str) -> None:
+        from app.operations import passphrase
+
+        if self._model is not None:
+            self._model.ask(passphrase.unlock, secret, done=self._opened_with, failed=self._refused)
+
+    def _opened_with(self, _outcome: Outcome[None]) -> None:
+        self._unlocked()
+
+    def ask_code(self) -> None:
+        """Nobody here has a PIN that fits: the recovery code gives one."""
+        from app.dialogs.pin_by_code import PinByCodeDialog
+
+        if self._model is None:
+            return
+        dialog = self.by_code = PinByCodeDialog(
+            self._model, self.lock.page.initials.text(), self._window.reader, self._window.theme, self._window
+        )
+        self.lock.over = dialog
+        dialog.signed_in.connect(self._by_code)
+        dialog.finished.connect(self._code_done)
+        dialog.open()
+
+    def _by_code(self, initials: str) -> None:
+        self.take_proof(initials)
+        self._unlocked()
+
+    def _code_done(self, _result: int) -> None:
+        if self.by_code is not None:
+            self.by_code.deleteLater()
+        self.by_code, self.lock.over = None, None
+
+    # the answer
+
+    def _refused(self, failure: Failure) -> None:
+        wait = failure.message.values.get("seconds")
+        if failure.message.key == "people.wait" and isinstance(wait, int):
+            values = {"person": failure.message.values.get("person"), "seconds": "{seconds}"}
+            words = sentence(Message("people.wait_counted", values), self._window.reader)
+            self.lock.page.refuse_for(words, wait)
+        else:
+            self.lock.page.refuse(sentence(failure.message, self._window.reader))
+
+    def _unlocked(self) -> None:
+        self.lock.unlock()
+        self.watch.touch()
+        self._window.tell_locked()

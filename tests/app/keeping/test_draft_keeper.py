@@ -1,0 +1,116 @@
+"""What was being typed when a program ended is back on the line; what another window types stays its own."""
+
+import json
+import os
+import subprocess
+import sys
+from functools import partial
+
+import pytest
+
+from app.keeping.preferences import Preferences
+from app.session.clock import still
+from app.session.model import SessionModel
+from app.session.runner import Runner
+from app.session.state import Session
+from app.window.main import MainWindow
+from storage.store import Store
+from tests.support.open_window import NOW, ZONE, make_store, open_window, settled, until
+
+ENDS = """
+import os, sys
+sys.path.insert(0, {tree!r})
+from pathlib import Path
+from PySide6.QtCore import QTimer
+from PySide6.QtWidgets import QApplication
+from functools import partial
+from app.session.clock import still
+from app.keeping.preferences import Preferences
+from app.session.runner import Runner
+from app.session.model import Session, SessionModel
+from app.window.main import MainWindow
+from storage.store import Store
+from tests.support.open_window import NOW, ZONE
+app = QApplication([])
+window = MainWindow(Preferences(cautions_seen=True))
+window.show()
+path = Path({path!r})
+session = Session(path, zone=ZONE, clock=still(NOW), person="AB")
+window.show_model(SessionModel(session, Runner(partial(Store.open, path)), window))
+def typed():
+    if not window.feed.is_ready:
+        return
+    if not window.strip.line.text():
+        window.select("bed-3")
+        window.strip.set_text("22/6 3")
+    elif window.keeping.drafts._kept and not window.model.runner.is_busy:
+        os._exit(9)  # as a crash ends it: nothing is closed
+timer = QTimer()
+timer.timeout.connect(typed)
+timer.start(50)
+QTimer.singleShot(60_000, app.quit)
+app.exec()
+"""
+
+
+def drafts(path):
+    with Store.open(path, read_only=True) as store:
+        return {n: json.loads(t) for n, t in store.drafts().items()}
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="ends a program as POSIX does")
+def test_a_line_that_was_being_typed_outlives_a_crash(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    script = ENDS.format(tree=os.getcwd(), path=str(path))
+    ended = subprocess.run([sys.executable, "-c", script], check=False, timeout=120)
+    assert ended.returncode == 9
+    kept = drafts(path)
+    assert [d["line"] for d in kept.values()] == ["22/6 3"]
+    with open_window(qtbot, path) as window:
+        until(qtbot, lambda: window.strip.line.text() == "22/6 3")
+        assert window.strip.patient == "bed-3"
+        assert "Bed 3" in window.keeping.notices.plain()
+        assert "nothing of it is recorded" in window.keeping.notices.plain()
+        settled(qtbot, window)
+        assert len(drafts(path)) == 1  # this window's own now
+        window.keeping.notices.seen.click()
+        assert not window.keeping.notices.isVisible()
+        window.strip.leave()
+        settled(qtbot, window)
+        assert drafts(path) == {}
+
+
+def test_what_another_window_types_stays_its_own(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    with open_window(qtbot, path) as first:
+        first.strip.set_text("22/6 3")
+        first.keeping.drafts.keep()
+        settled(qtbot, first)
+        second = MainWindow(Preferences(cautions_seen=True))
+        qtbot.addWidget(second)
+        second.show()
+        session = Session(path, zone=ZONE, clock=still(NOW), person="CD")
+        second.show_model(SessionModel(session, Runner(partial(Store.open, path)), second))
+        until(qtbot, lambda: second.feed.is_ready and not second.model.runner.is_busy)
+        assert second.strip.line.text() == ""
+        assert len(drafts(path)) == 1
+        second.close()
+        assert len(drafts(path)) == 1
+
+
+def test_a_recorded_line_leaves_no_draft_and_a_closed_window_keeps_its_line(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    with open_window(qtbot, path) as window:
+        window.strip.set_text("rr 24")
+        window.keeping.drafts.keep()
+        settled(qtbot, window)
+        assert len(drafts(path)) == 1
+        window.strip.line.returnPressed.emit()
+        settled(qtbot, window)
+        assert drafts(path) == {}
+        window.strip.set_text("rr 2")
+    assert [d["line"] for d in drafts(path).values()] == ["rr 2"]
+    with open_window(qtbot, path) as window:
+        until(qtbot, lambda: window.strip.line.text() == "rr 2")
+        window.strip.leave()
+        settled(qtbot, window)
