@@ -100,7 +100,7 @@ def _map(context: Context, store: Store, requests: list[operations.EpisodeReques
 def _compare(context: Context, store: Store, requests: list[operations.EpisodeRequest], theme: Theme) -> Picture:
     from app.compare.courses import compare
     from app.compare.picture import ComparisonPicture
-    from app.episode.course import course_of
+    from app.telling.support_course import course_of
     from app.ward.lane_words import OnWard
 
     answers = {r.episode: operations.of_episode(store, context.by, context.now(), r).value for r in requests}
@@ -134,10 +134,10 @@ def _shown(
     context: Context, store: Store, request: operations.EpisodeRequest, chosen: PanelSet | None = None
 ) -> EpisodeOnScreen:
     """What the window would show; `chosen` panels, or those kept for its indication, its kind, or shipped."""
-    from app.episode.course import course_of
     from app.episode.feed import shipped_titles
     from app.episode.panels import family_of, from_json, shipped
     from app.session.episode_shown import EpisodeOnScreen
+    from app.telling.support_course import course_of
 
     now = context.now()
     answer = operations.of_episode(store, context.by, now, request).value

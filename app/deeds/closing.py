@@ -47,7 +47,7 @@ class ClosingDeeds(WritingDeeds):
 
     def close_handover(self, given_by: str, taken_by: str, paper: str) -> None:
         """Gather the shift, print it, keep the print."""
-        from app.operations import handover_sheet
+        from app.sheet import operations as handover_sheet
 
         self.window.prefer(paper=paper)
         request = handover_sheet.CloseRequest(

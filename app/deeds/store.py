@@ -186,7 +186,7 @@ class StoreDeeds(Doer):
             self.window.say(f"{sound} {borne_out}".rstrip())
             return
         from app.dialogs.table import TableDialog
-        from app.telling.tables import Table
+        from app.telling.table import Table
 
         texts = [sentence(m, self.window.reader) for m in outcome.value]
         heads = (self.tr("No."), self.tr("Finding"))

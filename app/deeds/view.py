@@ -114,7 +114,7 @@ class ViewDeeds(Doer):
     def do_table(self) -> None:
         """The page's chart as a table and in words."""
         from app.dialogs.table import TableDialog
-        from app.telling.tables import table_of_page
+        from app.window.tables_of_pages import table_of_page
 
         table = table_of_page(self.window)
         if table is not None:

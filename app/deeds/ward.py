@@ -103,7 +103,7 @@ class WardDeeds(Doer):
 
     def save_handover(self, path: Path) -> None:
         """Write the sheet of this shift."""
-        from app.operations import handover_sheet
+        from app.sheet import operations as handover_sheet
 
         self._path = path
         window = self.window

@@ -20,7 +20,7 @@ from PySide6.QtWidgets import (
 from app.look.copying import TableCopy
 from app.look.fitted import FittedDialog, fit
 from app.look.theme import Theme
-from app.telling.tables import Table
+from app.telling.table import Table
 
 MOST_LINES = 4
 """Lines of a row; what is longer is told whole by its tip, in the words below and in the copy."""

@@ -9,10 +9,10 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QFrame, QLabel, QSizePolicy, QVBoxLayout
 
 from app.chart.shapes import Look, Reading
-from app.episode.course import Stretch
 from app.look.formats import fixed, minutes, wall
 from app.look.theme import Theme
 from app.telling.phrases import settings_line
+from app.telling.support_course import Stretch
 from core.record.instant import MINUTE, Instant
 
 FRESH = 2 * MINUTE

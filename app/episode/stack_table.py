@@ -10,10 +10,10 @@ import numpy as np
 
 from app.chart.doubts import Doubts
 from app.chart.shapes import Drawn, Look, StackSpec, Trace
-from app.episode.course import Stretch
 from app.look.formats import clock, fixed, wall
 from app.telling.phrases import settings_line, translate
-from app.telling.tables import Table
+from app.telling.support_course import Stretch
+from app.telling.table import Table
 from core.record.instant import MINUTE, Instant
 
 MOST_ROWS: Final = 5000

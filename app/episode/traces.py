@@ -9,8 +9,8 @@ from typing import Final
 import numpy as np
 
 from app.chart.shapes import Drawn, Look, Span, Trace
-from app.episode.course import Course
 from app.telling.phrases import computed_name, translate
+from app.telling.support_course import Course
 from core.judgement.shapes import EpisodeFigures, GasFigure
 from core.record.channels import CHANNELS, Group
 from core.record.episode import Episode, Series

@@ -26,7 +26,7 @@ from app.look.theme import Theme
 from app.map.words import class_words, map_spec, map_table, response_words, steps_of, titled_spec
 from app.session.episode_shown import EpisodeOnScreen
 from app.telling.phrases import gas_name, gas_words
-from app.telling.tables import Table
+from app.telling.table import Table
 from app.words import Reader
 from core.figures.gas_path import PathGas
 

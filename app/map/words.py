@@ -10,7 +10,7 @@ from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
 from app.look.formats import fixed, gas_pressure, signed, trimmed, wall
 from app.telling.headline import gas_state_word, judged_sign, since_start_words, verdict_with_loss
 from app.telling.phrases import gas_name, gas_words, state_of, translate, verdict_or_none
-from app.telling.tables import Table
+from app.telling.table import Table
 from app.ward.lane_words import anchor_name
 from app.words import Reader, sentence
 from app.words.short_forms import ph_as_reported

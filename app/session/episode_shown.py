@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from app.episode.course import Course
 from app.episode.panels import PanelSet
+from app.telling.support_course import Course
 from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode

@@ -31,7 +31,7 @@ from app.statistics.bars import StatisticsBars
 from app.statistics.explained import explain_measure
 from app.statistics.measures import Measure, as_text, measures
 from app.telling.phrases import translate
-from app.telling.tables import Table
+from app.telling.table import Table
 from app.words import Reader
 from core.figures.ward_statistics import WardStatistics
 from core.record.instant import DAY, Instant, from_datetime, to_datetime

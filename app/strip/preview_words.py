@@ -8,10 +8,10 @@ from math import isnan
 
 from PySide6.QtCore import QCoreApplication
 
-from app.episode.course import SHOWN
 from app.look.formats import clock, day, quantity, trimmed
 from app.operations.entry import Preview
 from app.telling.phrases import channel_name
+from app.telling.support_course import SHOWN
 from app.words import Reader, sentence
 from core.judgement.setting_change import effect_of_change
 from core.record.channels import CHANNELS, Group, Kind

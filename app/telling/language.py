@@ -1,7 +1,7 @@
 """The language that the program speaks: one place through which every text made without Qt passes.
 
-The window sends it through Qt's translators (`app.session.readers.speak_through_qt`); the command line leaves texts as
-they are written. Clinical abbreviations and units are in no language.
+The window sends it through Qt's translators (`app.session.readers.speak_through_qt`); the command line leaves texts
+as they are written. Clinical abbreviations and units are in no language.
 """
 
 from __future__ import annotations

@@ -14,7 +14,7 @@ from core.record.hindsight import Hindsight, Later
 from core.record.instant import Instant
 
 if TYPE_CHECKING:
-    from app.telling.tables import Table
+    from app.telling.table import Table
 
 
 def later_word(what: Later) -> str:
@@ -66,7 +66,7 @@ def later_table(
     found: Mapping[str, Sequence[Hindsight]], labels: Mapping[str, str], known_at: Instant, reader: Reader
 ) -> Table:
     """Everything that came later, by episode and time."""
-    from app.telling.tables import Table
+    from app.telling.table import Table
 
     heads = (
         translate("later", "Episode"), translate("later", "Happened"), translate("later", "What"),

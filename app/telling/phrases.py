@@ -8,9 +8,9 @@ from typing import Final
 
 from PySide6.QtCore import QCoreApplication
 
-from app.episode.course import Stretch
 from app.look.formats import fraction, gas_pressure, quantity, trimmed
 from app.look.theme import GasState, Verdict, verdict_of
+from app.telling.support_course import Stretch
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
 from core.judgement.shapes import GasFigure

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from PySide6.QtCore import QObject, Signal
 
-from app.episode.course import course_of
 from app.keeping.preferences import Preferences
 from app.operations import figures as figure_operations
 from app.operations.figures import EpisodeAnswer, WardAnswer, WardRequest
@@ -12,6 +11,7 @@ from app.operations.outcome import Outcome
 from app.session.model import SessionModel
 from app.session.shift import shift_of
 from app.session.state import Changed, What
+from app.telling.support_course import course_of
 from app.ward.lane_words import OnWard
 from app.ward.moves import moves_of
 from app.ward.view import WardContent

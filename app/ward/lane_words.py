@@ -8,7 +8,6 @@ from dataclasses import dataclass, replace
 from PySide6.QtCore import QCoreApplication
 
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
-from app.episode.course import Course
 from app.look.formats import clock, minutes, opened
 from app.look.theme import Tier, Verdict, tier_word
 from app.telling.certainty import starred
@@ -36,6 +35,7 @@ from app.telling.phrases import (
     verdict_or_none,
 )
 from app.telling.presumed import silent_word
+from app.telling.support_course import Course
 from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due

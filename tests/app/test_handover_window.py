@@ -10,9 +10,10 @@ from PySide6.QtPrintSupport import QPrinter
 from PySide6.QtWidgets import QApplication, QToolBar
 
 from app.dialogs.print_preview import HandoverPreview
-from app.operations import handover, handover_sheet
+from app.operations import handover
 from app.operations.last_handover import facts_of
 from app.operations.outcome import CancelledError, watched
+from app.sheet import operations as handover_sheet
 from app.sheet.content import sheet_content
 from app.words import Reader
 from core.record.instant import HOUR

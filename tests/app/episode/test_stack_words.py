@@ -1,12 +1,12 @@
 """An episode's stack says what its figures say."""
 
 from app.chart.shapes import Drawn
-from app.episode.course import course_of
 from app.episode.feed import shipped_titles
 from app.episode.panels import Panel, PanelSet, shipped
 from app.episode.stack_words import stack_of
 from app.look.theme import GasState, Verdict
 from app.session.episode_shown import EpisodeOnScreen
+from app.telling.support_course import course_of
 from core.judgement.policy import shipped_policy
 from tests.support.invented_ward import NOW, at, ended, failing, leaking, on_cpap, ward
 

@@ -6,8 +6,8 @@ import numpy as np
 import pytest
 
 from app.chart.shapes import Drawn, Look
-from app.episode.course import course_of
 from app.episode.traces import TraceMaker, runs_above, shown_as
+from app.telling.support_course import course_of
 from core.record.entries import Action, recorded
 from core.record.episode import build_episode
 from core.record.instant import MINUTE

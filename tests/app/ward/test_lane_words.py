@@ -5,8 +5,8 @@ from dataclasses import replace
 import pytest
 
 from app.chart.shapes import LaneKind
-from app.episode.course import course_of
 from app.look.theme import GasState, Tier, Verdict
+from app.telling.support_course import course_of
 from app.ward.flag_column import short_flags
 from app.ward.lane_words import LaneWords, OnWard, anchor_name
 from app.words import Reader

@@ -2,35 +2,17 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from app.chart.shapes import LanesSpec
 from app.compare.courses import Comparison, words_of
 from app.look.formats import fixed, wall
 from app.telling.phrases import translate
+from app.telling.table import Table
 from app.ward.view import WardContent
 
 if TYPE_CHECKING:
     from app.window.main import MainWindow
-
-
-@dataclass(frozen=True, slots=True)
-class Table:
-    """A table with its title and its text."""
-
-    title: str
-    heads: tuple[str, ...]
-    rows: tuple[tuple[str, ...], ...]
-    text: str = ""
-
-    def as_tsv(self) -> str:
-        """Tab-separated, as spreadsheets paste it."""
-        lines = [
-            "\t".join(self.heads),
-            *("\t".join(c.replace("\t", " ").replace("\n", " ") for c in row) for row in self.rows),
-        ]
-        return "\n".join(lines)
 
 
 def table_of_lanes(spec: LanesSpec, content: WardContent) -> Table:

@@ -1,6 +1,6 @@
 """The course of support: stretches of unchanged settings, what changed from what, breaks, nothing later."""
 
-from app.episode.course import course_of
+from app.telling.support_course import course_of
 from tests.support.invented_ward import NOW, at, failing, on_cpap, record_of
 
 
