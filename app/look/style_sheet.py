@@ -179,7 +179,7 @@ QScrollBar::add-line, QScrollBar::sub-line {{ width: 0; height: 0; }}
 QScrollBar::add-page, QScrollBar::sub-page {{ background: transparent; }}
 """
 
-_LOOK = Path(__file__).parent / "look"
+_LOOK = Path(__file__).parent
 _SURFACES = ("ground", "raised", "sunken", "line", "edge", "wash")
 _INKS = ("ink", "ink_quiet", "accent", "on_accent", "support_edge")
 
