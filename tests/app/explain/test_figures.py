@@ -10,6 +10,7 @@ from app.explain.figures import explain_row, explain_score, explanations_of, sco
 from app.explain.html import html_of
 from app.figures.groups import figure_groups
 from app.figures.rows import FigureRow
+from app.look.formats import unbroken
 from app.look.theme import THEMES
 from app.words import Reader
 from core.figures.catalogue import CATALOGUE, figure
@@ -100,7 +101,7 @@ def test_a_figure_explains_itself(key, unit):
         assert not HOLES.search(text), text
         assert "no value" not in explanation.title or explanation.reason
         for theme in THEMES.values():
-            assert escape(entry.formula) in html_of(explanation, theme)
+            assert escape(unbroken(entry.formula)) in html_of(explanation, theme)
 
 
 def test_every_value_has_a_unit_or_is_a_pure_number_and_every_gap_a_reason():
