@@ -8,7 +8,7 @@ from PySide6.QtWidgets import QApplication, QTableWidget, QTableWidgetItem, QTre
 
 from app.look.copying import TableCopy, can_be_copied
 
-APP = Path(__file__).parents[2] / "app"
+APP = Path(__file__).parents[3] / "app"
 LISTS = {"action_finder.py"}
 """Lists to choose from, in the shape of a tree: no table."""
 

@@ -37,7 +37,7 @@ def test_the_worst_is_seen_first_and_chosen(window):
     assert window.model.session.selection == "bed-7"
     assert window.strip.whom.text() == "Bed 7"
     assert ward.lanes.hasFocus()
-    assert lane(window).state_word == "severe"
+    assert lane(window).state_word == "severe, pH 7.24"
 
 
 def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
