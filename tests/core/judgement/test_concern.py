@@ -72,7 +72,7 @@ def test_why_counts_the_other_groups_of_open_flags():
 
 
 def test_a_new_acidosis_without_a_mask_stands_above_what_is_resolved():
-    """A newcomer's case: nothing is due and no flag is open, the patient is acidotic and nothing treats it."""
+    """A patient just begun: nothing is due and no flag is open, the patient is acidotic and nothing treats it."""
     untreated = ranked(
         "02:00 ph 7.25 paco2 75 pao2 60 gas_fio2 0.35 site arterial ceiling_of_care full indication copd\n"
         "02:01 mode BPAP-ST rr 30\n02:02 mask_off",
