@@ -7,9 +7,8 @@ from pathlib import Path
 
 import pytest
 
-from app import demo
-from app.cli import main
 from storage.store import Store
+from tests.support.command_line import run
 
 SPAN = ("--from", "2026-03-27T19:30:00Z", "--to", "2026-03-28T05:30:00Z")
 WRITERS = {
@@ -21,25 +20,6 @@ WRITERS = {
     "export": ("x.csv", ("--episode", "N-0327-04", "--channel", "ph", "--out")),
     "export deidentified": ("x.csv", ("--episode", "N-0327-04", "--channel", "ph", "--deidentified", "--out")),
 }
-
-
-@pytest.fixture(scope="module")
-def night(tmp_path_factory) -> Path:
-    return demo.make_demo_store(tmp_path_factory.mktemp("night"))
-
-
-@pytest.fixture
-def own(night: Path, tmp_path: Path) -> Path:
-    with Store.open(night) as store:
-        store.backup(tmp_path / "copy")
-    Store.restore(tmp_path / "copy", tmp_path / "own.luffmark")
-    return tmp_path / "own.luffmark"
-
-
-def run(capsys, *arguments: object) -> tuple[int, str, str]:
-    code = main([str(a) for a in arguments])
-    out, err = capsys.readouterr()
-    return code, out, err
 
 
 def write(capsys, name: str, store: Path, path: Path, *more: str) -> tuple[int, str, str]:

@@ -3,38 +3,17 @@
 import csv
 import io
 import json
-from pathlib import Path
 
 import pytest
 from pypdf import PdfReader
 
-from app import demo
-from app.cli import main
 from app.episode.panels import Panel, PanelSet, to_json, to_toml
 from app.operations import panel
 from storage.store import Store
+from tests.support.command_line import run
 
 SPAN = ("--from", "2026-03-27T19:30:00Z", "--to", "2026-03-28T05:30:00Z")
 KNOWN = "2026-03-28T02:40:00Z"
-
-
-@pytest.fixture(scope="module")
-def night(tmp_path_factory) -> Path:
-    return demo.make_demo_store(tmp_path_factory.mktemp("night"))
-
-
-@pytest.fixture
-def own(night: Path, tmp_path: Path) -> Path:
-    with Store.open(night) as store:
-        store.backup(tmp_path / "copy")
-    Store.restore(tmp_path / "copy", tmp_path / "own.luffmark")
-    return tmp_path / "own.luffmark"
-
-
-def run(capsys, *arguments: object) -> tuple[int, str, str]:
-    code = main([str(a) for a in arguments])
-    out, err = capsys.readouterr()
-    return code, out, err
 
 
 def test_statistics_say_the_same_as_text_json_and_csv(capsys, night, tmp_path):

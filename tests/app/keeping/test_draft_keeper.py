@@ -1,8 +1,6 @@
 """What was being typed when a program ended is back on the line; what another window types stays its own."""
 
 import json
-import os
-import subprocess
 import sys
 from functools import partial
 
@@ -15,28 +13,10 @@ from app.session.runner import Runner
 from app.session.state import Session
 from app.window.main import MainWindow
 from storage.store import Store
+from tests.support.crashing import crash_while
 from tests.support.open_window import NOW, ZONE, make_store, open_window, settled, until
 
-ENDS = """
-import os, sys
-sys.path.insert(0, {tree!r})
-from pathlib import Path
-from PySide6.QtCore import QTimer
-from PySide6.QtWidgets import QApplication
-from functools import partial
-from app.session.clock import still
-from app.keeping.preferences import Preferences
-from app.session.runner import Runner
-from app.session.model import Session, SessionModel
-from app.window.main import MainWindow
-from storage.store import Store
-from tests.support.open_window import NOW, ZONE
-app = QApplication([])
-window = MainWindow(Preferences(cautions_seen=True))
-window.show()
-path = Path({path!r})
-session = Session(path, zone=ZONE, clock=still(NOW), person="AB")
-window.show_model(SessionModel(session, Runner(partial(Store.open, path)), window))
+TYPED = """
 def typed():
     if not window.feed.is_ready:
         return
@@ -45,11 +25,6 @@ def typed():
         window.strip.set_text("22/6 3")
     elif window.keeping.drafts._kept and not window.model.runner.is_busy:
         os._exit(9)  # as a crash ends it: nothing is closed
-timer = QTimer()
-timer.timeout.connect(typed)
-timer.start(50)
-QTimer.singleShot(60_000, app.quit)
-app.exec()
 """
 
 
@@ -61,9 +36,7 @@ def drafts(path):
 @pytest.mark.skipif(sys.platform == "win32", reason="ends a program as POSIX does")
 def test_a_line_that_was_being_typed_outlives_a_crash(qtbot, tmp_path):
     path = make_store(tmp_path / "ward.luffmark")
-    script = ENDS.format(tree=os.getcwd(), path=str(path))
-    ended = subprocess.run([sys.executable, "-c", script], check=False, timeout=120)
-    assert ended.returncode == 9
+    crash_while(TYPED, path)
     kept = drafts(path)
     assert [d["line"] for d in kept.values()] == ["22/6 3"]
     with open_window(qtbot, path) as window:

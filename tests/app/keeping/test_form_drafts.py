@@ -1,8 +1,6 @@
 """A form that was being filled in when a program ended is offered again, every field; nothing of it is recorded."""
 
 import json
-import os
-import subprocess
 import sys
 
 import pytest
@@ -14,28 +12,10 @@ from app.forms.settings_form import SettingsForm
 from app.forms.typed import fields_of
 from app.forms.vitals_form import VitalsForm
 from storage.store import Store
+from tests.support.crashing import crash_while
 from tests.support.open_window import make_store, open_window, settled, until
 
-ENDS = """
-import os, sys
-sys.path.insert(0, {tree!r})
-from pathlib import Path
-from functools import partial
-from PySide6.QtCore import QTimer
-from PySide6.QtWidgets import QApplication
-from app.session.clock import still
-from app.keeping.preferences import Preferences
-from app.session.runner import Runner
-from app.session.model import Session, SessionModel
-from app.window.main import MainWindow
-from storage.store import Store
-from tests.support.open_window import NOW, ZONE
-app = QApplication([])
-window = MainWindow(Preferences(cautions_seen=True))
-window.show()
-path = Path({path!r})
-session = Session(path, zone=ZONE, clock=still(NOW), person="AB")
-window.show_model(SessionModel(session, Runner(partial(Store.open, path)), window))
+TYPED = """
 def typed():
     log = window.doers.log
     if not window.feed.is_ready or window.model.runner.is_busy:
@@ -52,11 +32,6 @@ def typed():
         log.form.edited()
     elif window.keeping.drafts.forms._kept:
         os._exit(9)  # as a crash ends it: nothing is closed
-timer = QTimer()
-timer.timeout.connect(typed)
-timer.start(50)
-QTimer.singleShot(60_000, app.quit)
-app.exec()
 """
 
 
@@ -68,9 +43,7 @@ def drafts(path):
 @pytest.mark.skipif(sys.platform == "win32", reason="ends a program as POSIX does")
 def test_a_form_that_was_being_filled_in_outlives_a_crash(qtbot, tmp_path):
     path = make_store(tmp_path / "ward.luffmark")
-    script = ENDS.format(tree=os.getcwd(), path=str(path))
-    ended = subprocess.run([sys.executable, "-c", script], check=False, timeout=120)
-    assert ended.returncode == 9
+    crash_while(TYPED, path)
     assert [d["form"] for d in drafts(path)] == ["GasForm"]
     with Store.open(path) as store:
         head = store.head()
