@@ -1,4 +1,4 @@
-"""Device samples as immutable blocks, one per hour: exact, small, quick to decode.
+"""Device samples as immutable blocks: exact, small, quick to decode. `storage.block_cuts` says where they are cut.
 
 Values that are whole multiples of a power of ten are kept as integers, so that 12.3 comes back as 12.3;
 anything else is kept as float64. Integers go as differences in bytes, or as offsets from the least in bits,
@@ -8,34 +8,29 @@ deflated where that helps: whichever is smallest. Times that keep one step are n
 from __future__ import annotations
 
 import zlib
-from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import lru_cache
 from hashlib import sha256
-from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
-from core.record.instant import HOUR
 from core.record.message import refuse
 from core.record.samples import Times, Values
 from storage.errors import store_error
 
 CODEC = "b1"
-_REGULAR, _HAS_NAN, _FLOAT, _BITS, _DEFLATED = 1, 2, 4, 8, 16
+REGULAR, _HAS_NAN, _FLOAT, BITS, _DEFLATED = 1, 2, 4, 8, 16
 _MAX_SCALE = 9
 _MAX_DECIMALS = 15
 _EXACT = 2.0**53
-_FEW = 240
-_MANY, _SAMPLE = 1_800, 360
 _MOST = 4_000_000
 """Samples in a block: an hour at a thousand a second. More is damage, not data."""
-_LEVEL = 6
-"""How hard to deflate: the highest level takes three times as long and saves less than a hundredth."""
 _WIDTHS = (1, 2, 4, 8)
 _INTS = {w: np.dtype(f"<i{w}") for w in _WIDTHS}
 Integers = NDArray[np.int64]
+_Form = tuple[int, int, int, int, bytes]
+"""A way to write the values: flags, scale, start, width, bytes."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,110 +48,75 @@ class Block:
         return sha256(self.blob).digest()
 
 
-def hour_blocks(t: Times, v: Values, decimals: int) -> Iterator[Block]:
-    """Samples, shape (n,), times strictly increasing, as one block per hour of the clock (UTC)."""
-    if t.size == 0:
-        return
-    edges = np.concatenate(([0], np.flatnonzero(np.diff(t // HOUR)) + 1, [t.size]))
-    plain = _plain_hours(t, v, decimals, edges)
-    for i, (start, end) in enumerate(pairwise(edges.tolist())):
-        yield plain.get(i) or encode(t[start:end], v[start:end], decimals)
-
-
-def _plain_hours(t: Times, v: Values, decimals: int, edges: Integers) -> dict[int, Block]:
-    """The hours of few samples in even steps, packed together: the same blocks would cost ten times as much alone.
-
-    Hours with gaps, NaN, many samples or a wide span are left to `encode`.
-    """
-    sizes, starts = np.diff(edges), edges[:-1]
-    found = _as_integers(v, np.isnan(v), decimals)
-    if found is None or sizes.size < 8:
-        return {}
-    scale, whole = found
-    gaps = np.append(np.diff(t), 0)
-    first_gap = gaps[starts]
-    odd = gaps != np.repeat(first_gap, sizes)
-    odd[edges[1:] - 1] = False  # the gap into the next hour is no matter
-    odd |= np.isnan(v)
-    low = np.minimum.reduceat(whole, starts)
-    span = np.maximum.reduceat(whole, starts) - low
-    good = ~np.logical_or.reduceat(odd, starts) & (sizes > 1) & (sizes <= _FEW) & (span < 1 << 16)
-    bits = np.ceil(np.log2(span + 1.0)).astype(np.int64)
-    made: dict[int, Block] = {}
-    for n, width in {(int(n), int(b)) for n, b in zip(sizes[good], bits[good], strict=True)}:
-        hours = np.flatnonzero(good & (sizes == n) & (bits == width))
-        rows = starts[hours, None] + np.arange(n)
-        packed = _bit_rows(whole[rows] - low[hours, None], width)
-        for k, hour in enumerate(hours.tolist()):
-            at = int(starts[hour])
-            head = _head(_REGULAR | _BITS, scale, decimals, width, n, int(gaps[at]), int(low[hour]))
-            made[hour] = Block(int(t[at]), int(t[at + n - 1]), n, head + packed[k].tobytes())
-    return made
-
-
-def _bit_rows(whole: Integers, bits: int) -> NDArray[np.uint8]:
-    """Rows of integers, shape (k, n), each row packed to `bits` bits a number."""
-    k, n = whole.shape
-    as_bits = np.unpackbits(whole.astype(">u2").view(np.uint8).reshape(k, n, 2), axis=2)
-    return np.packbits(as_bits[:, :, 16 - bits :].reshape(k, n * bits), axis=1)
-
-
 @lru_cache(maxsize=4096)
-def _head(flags: int, scale: int, decimals: int, widths: int, n: int, step: int, start: int) -> bytes:
+def block_head(flags: int, scale: int, decimals: int, widths: int, n: int, step: int, start: int) -> bytes:
     fixed = bytes((flags, scale | min(decimals, _MAX_DECIMALS) << 4, widths))
     return fixed + _varint(n) + _varint(step) + _varint(_zigzag(start))
 
 
-def encode(t: Times, v: Values, decimals: int) -> Block:
-    """One block of samples: `t` int64 us UTC strictly increasing, `v` float64 (NaN kept), shapes (n,), n > 0."""
+def encode(t: Times, v: Values, decimals: int, integers: tuple[int, Integers] | None = None) -> Block:
+    """One block of samples: `t` int64 us UTC strictly increasing, `v` float64 (NaN kept), shapes (n,), n > 0.
+
+    `integers` is what `as_integers` says of `v`, where that is known already.
+    """
     if not 0 < t.size <= _MOST:
         raise refuse("samples.too_many", count=t.size, accepted=_MOST)
-    gaps = np.diff(t)
-    step = int(np.gcd.reduce(gaps)) if gaps.size else 1
+    gaps = t[1:] - t[:-1]
+    step = int(gaps.min()) if gaps.size else 1
     regular = bool((gaps == step).all())
+    if not regular and (gaps % step).any():
+        step = int(np.gcd.reduce(gaps))
     time_code, times = (0, b"") if regular else _planes(gaps // step)
     nan = np.isnan(v)
     gone = np.packbits(nan).tobytes() if nan.any() else b""
-    common = _REGULAR * regular | _HAS_NAN * bool(gone)
-    candidates = []
-    for flags, scale, start, width, values in _value_forms(v, nan, decimals):
-        body = times + gone + values
-        if times or gone or not flags & _BITS:  # bits alone are as dense as deflating them would be
-            packer = zlib.compressobj(_LEVEL, zlib.DEFLATED, -15)
-            small = packer.compress(body) + packer.flush()
-            if len(small) < len(body):
-                flags, body = flags | _DEFLATED, small
-        head = _head(common | flags, scale, decimals, time_code << 6 | width, t.size, step, start)
-        candidates.append(head + body)
-    return Block(int(t[0]), int(t[-1]), int(t.size), min(candidates, key=len))
+    found = integers or as_integers(v, nan, decimals)
+    beside = times + gone
+    common = REGULAR * regular | _HAS_NAN * bool(gone)
+    flags, scale, start, width, body = _float_form(beside, v) if found is None else _integer_form(beside, *found)
+    head = block_head(common | flags, scale, decimals, time_code << 6 | width, t.size, step, start)
+    return Block(int(t[0]), int(t[-1]), int(t.size), head + body)
 
 
-def _value_forms(v: Values, nan: NDArray[np.bool_], decimals: int) -> list[tuple[int, int, int, int, bytes]]:
-    """The ways to write the values: (flags, scale, start, width, bytes)."""
-    found = _as_integers(v, nan, decimals)
-    if found is None:
-        return [(_FLOAT, 0, 0, 0, v.astype("<f8").tobytes())]
-    scale, whole = found
-    code, planes = _planes(np.diff(whole))
+def _float_form(beside: bytes, v: Values) -> _Form:
+    values = v.astype("<f8").tobytes()
+    deflated, body = _shorter(beside, values, _deflate(values))
+    return _FLOAT | deflated, 0, 0, 0, body
+
+
+def _integer_form(beside: bytes, scale: int, whole: Integers) -> _Form:
+    """Integers behind what stands `beside` them: their differences deflated, or offsets from the least in bits."""
     low = int(whole.min())
     bits = int(whole.max() - low).bit_length()
-    by_planes = (0, scale, int(whole[0]), code, planes)
-    if bits > 32:
-        return [by_planes]
-    packed = _bit_packed(whole - low, bits)
-    in_bits = (_BITS, scale, low, bits, packed)
-    return [in_bits] if _is_noise(np.diff(whole), len(packed)) else [by_planes, in_bits]
+    code, planes = _planes(whole[1:] - whole[:-1])
+    small = _deflate(planes)
+    if bits > 32 or len(small) < whole.size * bits / 8:
+        deflated, body = _shorter(beside, planes, small)
+        return deflated, scale, int(whole[0]), code, body
+    packed = _bit_packed(whole - low, bits)  # as dense as deflating it would be
+    deflated, body = _shorter(beside, packed, _deflate(packed, level=0)) if beside else (0, packed)
+    return BITS | deflated, scale, low, bits, body
 
 
-def _is_noise(steps: Integers, packed: int) -> bool:
-    """Whether many differences would hardly deflate below the bits they are packed to, by a part of them."""
-    if steps.size < _MANY:
-        return False
-    some = steps[steps.size // 2 : steps.size // 2 + _SAMPLE]
-    return len(zlib.compress(_planes(some)[1], 1)) * steps.size > 1.15 * packed * some.size
+def _shorter(beside: bytes, values: bytes, small: bytes) -> tuple[int, bytes]:
+    """Both as they are or deflated, whichever is shorter, with its flag; `small` are the values, deflated.
+
+    What stands beside ends on a whole byte, so that values deflated alone behind it are one stream to who reads it.
+    """
+    body = _deflate(beside, end=zlib.Z_SYNC_FLUSH) + small if beside else small
+    return (_DEFLATED, body) if len(body) < len(beside) + len(values) else (0, beside + values)
 
 
-def _as_integers(v: Values, nan: NDArray[np.bool_], decimals: int) -> tuple[int, Integers] | None:
+def _deflate(body: bytes, level: int = 1, end: int = zlib.Z_FINISH) -> bytes:
+    """Deflated by runs and frequencies alone; level 0 leaves the bytes as they are.
+
+    Measured values stand still or scatter, and repeat no longer stretch of bytes: to look for one takes several times
+    as long and costs, by up to a fifth, room.
+    """
+    packer = zlib.compressobj(level, zlib.DEFLATED, -15, 8, zlib.Z_RLE)
+    return packer.compress(body) + packer.flush(end)
+
+
+def as_integers(v: Values, nan: NDArray[np.bool_], decimals: int) -> tuple[int, Integers] | None:
     """The power of ten that makes every value whole, tried from the decimals as written. NaN repeats the last."""
     if nan.any():
         last = np.maximum.accumulate(np.where(nan, 0, np.arange(v.size)))
@@ -186,8 +146,9 @@ def _from_planes(raw: bytes, code: int, n: int) -> Integers:
 
 
 def _bit_packed(whole: Integers, bits: int) -> bytes:
-    as_bytes = whole.astype(">u4").view(np.uint8).reshape(-1, 4)
-    return np.packbits(np.unpackbits(as_bytes, axis=1)[:, 32 - bits :]).tobytes()
+    size = next(w for w in (8, 16, 32) if bits <= w)
+    as_bits = np.unpackbits(whole.astype(f">u{size // 8}").view(np.uint8)).reshape(-1, size)
+    return np.packbits(as_bits[:, size - bits :]).tobytes()
 
 
 def _from_bits(raw: bytes, bits: int, n: int) -> Integers:
@@ -247,9 +208,9 @@ def _decode(blob: bytes, t0: int) -> tuple[Times, Values, int]:
     start, at = _read_varint(blob, at)
     start = start >> 1 if not start & 1 else -((start + 1) >> 1)
     body = zlib.decompress(blob[at:], -15) if flags & _DEFLATED else blob[at:]
-    time_bytes = 0 if flags & _REGULAR else _WIDTHS[widths >> 6] * (n - 1)
+    time_bytes = 0 if flags & REGULAR else _WIDTHS[widths >> 6] * (n - 1)
     nan_bytes = (n + 7) // 8 if flags & _HAS_NAN else 0
-    if flags & _REGULAR:
+    if flags & REGULAR:
         t = t0 + step * np.arange(n, dtype=np.int64)
     else:
         t = np.empty(n, np.int64)
@@ -265,7 +226,7 @@ def _decode(blob: bytes, t0: int) -> tuple[Times, Values, int]:
 def _values(raw: bytes, flags: int, scale: int, width: int, start: int, n: int) -> Values:
     if flags & _FLOAT:
         return np.frombuffer(raw, "<f8", n).astype(np.float64)
-    if flags & _BITS:
+    if flags & BITS:
         whole = start + _from_bits(raw, width, n)
     else:
         whole = np.empty(n, np.int64)

@@ -24,9 +24,9 @@ from storage import erasure, keys, opening
 from storage import reading_ledger as reading
 from storage import reading_sources as taken
 from storage import schema as s
+from storage.block_cuts import blocks_of
 from storage.chain import GENESIS, last_batch
 from storage.changes import Changes, changes_between
-from storage.chunks import hour_blocks
 from storage.draft_batch import (
     DraftBatch,
     DraftChunk,
@@ -345,7 +345,7 @@ class Store(StoreCare):
 
 
 def encoded(block: DeviceSamples) -> tuple[DraftChunk, ...]:
-    """A block of device samples as chunks, one per hour.
+    """Device samples as chunks, of an hour or of up to a day.
 
     Raises:
         RecordError: `samples.*` when the channel is no device channel or times do not increase.
@@ -357,5 +357,5 @@ def encoded(block: DeviceSamples) -> tuple[DraftChunk, ...]:
         raise refuse("samples.not_increasing", channel=block.channel, accepted="strictly increasing times")
     return tuple(
         DraftChunk(block.episode, block.channel, block.source, made)
-        for made in hour_blocks(block.t, block.v, block.decimals)
+        for made in blocks_of(block.t, block.v, block.decimals)
     )

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-
 import numpy as np
 
+from core.record.instant import HOUR
 from core.record.samples import Times, Values
+from storage.block_cuts import blocks_of
 from storage.chunks import Block, decode
 from storage.store import Store
 
@@ -17,21 +17,31 @@ class HeldSamples:
     def __init__(self, store: Store, episode: str, channel: str) -> None:
         self._store, self._episode, self._channel = store, episode, channel
 
-    def have(self, blocks: Sequence[Block]) -> list[bool]:
-        """Whether every sample of each block is held with the same value. The blocks are in order of time."""
+    def without_held(self, blocks: list[Block]) -> tuple[list[Block], int]:
+        """The blocks without the hours that are held just so, and how many samples those have.
+
+        An hour is held where every sample of it is in the store with the same value. `blocks` are in order of time.
+        """
         between = (blocks[0].t0, blocks[-1].t1)
         found = self._store.samples(self._episode, channel=self._channel, between=between)
         if not found:
-            return [False] * len(blocks)
-        return [_has(found[0].t, found[0].v, block) for block in blocks]
+            return blocks, 0
+        fresh: list[Block] = []
+        known = 0
+        for block in blocks:
+            new = _new_of(block, found[0].t, found[0].v)
+            known += block.n - sum(b.n for b in new)
+            fresh += new
+        return fresh, known
 
 
-def _has(held_t: Times, held_v: Values, block: Block) -> bool:
-    first = int(np.searchsorted(held_t, block.t0))
-    if first + block.n > held_t.size or held_t[first] != block.t0:
-        return False
-    t, v, _decimals = decode(block.blob, block.t0)
-    i = first + np.searchsorted(held_t[first:], t)
-    if i[-1] >= held_t.size:
-        return False
-    return np.array_equal(held_t[i], t) and np.array_equal(held_v[i], v, equal_nan=True)
+def _new_of(block: Block, held_t: Times, held_v: Values) -> list[Block]:
+    t, v, decimals = decode(block.blob, block.t0)
+    at = np.minimum(np.searchsorted(held_t, t), held_t.size - 1)
+    same = (held_t[at] == t) & ((held_v[at] == v) | (np.isnan(held_v[at]) & np.isnan(v)))
+    hours = np.concatenate(([0], np.flatnonzero(np.diff(t // HOUR)) + 1))
+    held = np.logical_and.reduceat(same, hours)
+    if not held.any():
+        return [block]
+    new = ~np.repeat(held, np.diff(np.append(hours, t.size)))
+    return list(blocks_of(t[new], v[new], decimals))

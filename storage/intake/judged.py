@@ -15,8 +15,8 @@ from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
 from storage.store import Store
 
-_HOURS_AT_ONCE, _SAMPLES_AT_ONCE = 2_000, 400_000
-"""Hours and samples that are compared at once with what the store has: enough to be quick, few enough for memory."""
+_BLOCKS_AT_ONCE, _SAMPLES_AT_ONCE = 2_000, 400_000
+"""Blocks and samples that are compared at once with what the store has: enough to be quick, few enough for memory."""
 
 
 def judged_intake(
@@ -53,20 +53,26 @@ def judged_intake(
 def new_chunks(
     spool: SampleSpool, source_id: str, existing: Store | None, step: Callable[[], None]
 ) -> tuple[FreshChunks, int]:
-    """The hours of samples that the store does not have just so, and how many samples it has."""
+    """The samples of hours that the store does not have just so, and how many samples it has."""
     fresh = FreshChunks(source_id)
     known = 0
+    there = _known_episodes(spool, existing)
     for key in spool.kinds():
-        held = None if existing is None else HeldSamples(existing, *key)
+        held = HeldSamples(existing, *key) if existing is not None and key[0] in there else None
         for some in _in_parts(spool.blocks(key)):
             step()
-            have = held.have(some) if held is not None else [False] * len(some)
-            for block, is_held in zip(some, have, strict=True):
-                if is_held:
-                    known += block.n
-                else:
-                    fresh.add(key, block)
+            new, count = (some, 0) if held is None else held.without_held(some)
+            known += count
+            for block in new:
+                fresh.add(key, block)
     return fresh, known
+
+
+def _known_episodes(spool: SampleSpool, existing: Store | None) -> frozenset[str]:
+    """Those of the spool's episodes that the store has anything of."""
+    if existing is None:
+        return frozenset()
+    return frozenset(filter(existing.has_episode, {episode for episode, _channel in spool.kinds()}))
 
 
 def _in_parts(blocks: Iterable[Block]) -> Iterator[list[Block]]:
@@ -75,7 +81,7 @@ def _in_parts(blocks: Iterable[Block]) -> Iterator[list[Block]]:
     for block in blocks:
         waiting.append(block)
         count += block.n
-        if len(waiting) >= _HOURS_AT_ONCE or count >= _SAMPLES_AT_ONCE:
+        if len(waiting) >= _BLOCKS_AT_ONCE or count >= _SAMPLES_AT_ONCE:
             yield waiting
             waiting, count = [], 0
     if waiting:

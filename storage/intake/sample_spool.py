@@ -18,7 +18,8 @@ from numpy.typing import NDArray
 from core.record.channels import Channel
 from core.record.instant import HOUR, Instant
 from core.record.samples import Times, Values
-from storage.chunks import Block, decode, hour_blocks
+from storage.block_cuts import blocks_of, hour_blocks, joined
+from storage.chunks import Block, decode
 from storage.intake.findings import MAX_LISTED, unreadable
 from storage.intake.sealed_file import SealedFile
 
@@ -78,7 +79,7 @@ class LeakUse:
 
 
 class SampleSpool:
-    """Gathers samples; `blocks` gives them hour by hour.
+    """Gathers samples; `blocks` gives them in order of time.
 
     `repeated` are those that stand twice, as far as they are listed; `repeated_count` counts them all.
     """
@@ -130,12 +131,15 @@ class SampleSpool:
         return list(self._series)
 
     def blocks(self, key: tuple[str, str]) -> Iterator[Block]:
-        """The samples of one episode and channel as blocks, hour by hour, repeats left out and noted."""
+        """The samples of one episode and channel as blocks in order of time, repeats left out and noted."""
         series = self._series[key]
-        if not series.packed:
-            t, v, _lines = self._without_repeats(key, *series.in_order())
-            yield from hour_blocks(t, v, series.decimals)
+        if series.packed:
+            yield from joined(self._hours(key, series), series.decimals)
             return
+        t, v, _lines = self._without_repeats(key, *series.in_order())
+        yield from blocks_of(t, v, series.decimals)
+
+    def _hours(self, key: tuple[str, str], series: _Series) -> Iterator[Block]:
         self._pack_series(key, series)
         hours = np.frombuffer(series.packed, np.int64)[::2]
         order = np.argsort(hours, kind="stable")

@@ -110,17 +110,20 @@ class TableRows:
     def _fields(self, block: RowBlock) -> tuple[ByteFields, NDArray[np.int32]]:
         """The fields of a block; rows that are wider than the header are refused."""
         if block.fields is not None:
-            return block.fields, np.asarray(block.lines, np.int32)
+            lines = block.lines
+            if isinstance(lines, range):
+                return block.fields, np.arange(lines.start, lines.stop, dtype=np.int32)
+            return block.fields, np.asarray(lines, np.int32)
         width = len(self._header)
-        kept, lines = [], []
+        kept, of_kept = [], []
         for cells, line in zip(block.rows, block.lines, strict=True):
             row = fitted(cells, width)
             if len(row) != width:
                 self._refuse_width(line, ",".join(cells), len(row))
             else:
                 kept.append(row)
-                lines.append(line)
-        return fields_of(kept), np.array(lines, np.int32)
+                of_kept.append(line)
+        return fields_of(kept), np.array(of_kept, np.int32)
 
     def _as_wide_as_the_header(self, fields: ByteFields, rows: Offsets, lines: NDArray[np.int32]) -> Offsets:
         """The rows with nothing behind the header's last column; others are refused."""

@@ -6,7 +6,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from core.record.instant import HOUR, MINUTE, SECOND
-from storage.chunks import decode, encode, hour_blocks
+from storage.chunks import decode, encode
 from storage.errors import StoreError
 
 T0 = 1_774_656_000_000_000  # 2026-03-28T00:00:00Z
@@ -45,29 +45,6 @@ def test_one_block_comes_back_exactly(made: tuple[np.ndarray, np.ndarray, int]) 
     assert (block.t0, block.t1, block.n) == (t[0], t[-1], t.size)
 
 
-@settings(max_examples=100, deadline=None)
-@given(st.integers(1, 40), st.data())
-def test_hours_packed_together_come_back_exactly(hours: int, data: st.DataObject) -> None:
-    per_hour = data.draw(st.sampled_from([1, 2, 12, 60, 240, 300]))
-    n = hours * per_hour
-    t = T0 + np.arange(n, dtype=np.int64) * (HOUR // per_hour)
-    seed = data.draw(st.integers(0, 2**32))
-    rng = np.random.default_rng(seed)
-    v = np.round(rng.normal(480, data.draw(st.sampled_from([0, 1, 60, 40_000])), n), 1)
-    for i in data.draw(st.lists(st.integers(0, n - 1), max_size=5)):
-        v[i] = np.nan
-    kept = np.ones(n, np.bool_)
-    kept[data.draw(st.lists(st.integers(0, n - 1), max_size=5, unique=True))] = False
-    t, v = t[kept], v[kept]
-    blocks = list(hour_blocks(t, v, 1))
-    parts = [decode(b.blob, b.t0, b.sha) for b in blocks]
-    assert all(b.t0 // HOUR == b.t1 // HOUR for b in blocks)
-    if parts:
-        assert np.array_equal(np.concatenate([p[0] for p in parts]), t)
-        assert np.array_equal(np.concatenate([p[1] for p in parts]), v, equal_nan=True)
-    assert sum(b.n for b in blocks) == t.size
-
-
 @settings(max_examples=300, deadline=None)
 @given(st.binary(max_size=80))
 def test_bytes_that_are_no_block_are_damage_and_nothing_worse(blob: bytes) -> None:
@@ -87,3 +64,25 @@ def test_a_flipped_bit_is_found_by_the_digest() -> None:
         wrong[i] ^= 1
         with pytest.raises(StoreError):
             decode(bytes(wrong), block.t0, block.sha)
+
+
+@pytest.mark.parametrize("n", [1, 60, 999, 1_000, 1_440, 3_600])
+@pytest.mark.parametrize("kind", ["steady", "drift", "noise", "wide noise", "pattern"])
+def test_what_scatters_and_what_repeats_comes_back_and_is_never_larger_than_its_bits(n: int, kind: str) -> None:
+    rng = np.random.default_rng(n)
+    v = {
+        "steady": 18.0 + (rng.random(n) < 0.02),
+        "drift": np.round(20 + np.cumsum(rng.normal(0, 0.1, n)), 1),
+        "noise": np.round(rng.normal(24, 3, n)),
+        "wide noise": np.round(rng.normal(480, 60, n)),
+        "pattern": np.resize([480.0, 12.0, 377.0, 5.0, 91.0], n),
+    }[kind]
+    t = T0 + np.arange(n, dtype=np.int64) * MINUTE
+    block = encode(t, v, 1)
+    back_t, back_v, _decimals = decode(block.blob, block.t0, block.sha)
+    assert np.array_equal(back_t, t)
+    assert np.array_equal(back_v, v)
+    in_bits = n * int(np.ptp(np.rint(v * 10))).bit_length() / 8
+    assert len(block.blob) <= in_bits + 24
+    if kind == "steady" and n > 240:
+        assert len(block.blob) < in_bits / 2

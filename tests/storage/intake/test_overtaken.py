@@ -68,7 +68,8 @@ def test_stopped_between_two_parts_of_the_samples_nothing_stays(
     tmp_path: Path, store: Store, monkeypatch: pytest.MonkeyPatch
 ) -> None:
     monkeypatch.setattr(batch, "_CHUNKS_AT_ONCE", 2)
-    rows = [f"E1,2026-03-27T{h:02d}:{m:02d}:00+00:00,leak,{m},L/min,device,\n" for h in range(12) for m in range(60)]
+    days = range(16, 28)
+    rows = [f"E1,2026-03-{d:02d}T09:{m:02d}:00+00:00,leak,{m},L/min,device,\n" for d in days for m in range(60)]
     path = tmp_path / "a.csv"
     path.write_text(LOG + "".join(rows))
     intake = operations.read(store, "AB", NOW, ReadRequest(path)).value
