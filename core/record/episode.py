@@ -20,7 +20,7 @@ DEVICE = -1
 """The origin of a sample that a machine wrote: it has no entry."""
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Series:
     """One numeric channel over time, in order of time. All arrays have shape (n,).
 
@@ -53,15 +53,15 @@ class Series:
         """The index of the newest value at or before `at`; -1 when there is none."""
         return int(self.t.searchsorted(at, side="right")) - 1
 
-    @property
+    @cached_property
     def spots(self) -> Series:
         """Only what people logged."""
-        return self.cut(self.spot)
+        return self if self.spot.all() else self.cut(self.spot)
 
-    @property
+    @cached_property
     def machine(self) -> Series:
         """Only what a machine wrote."""
-        return self.cut(~self.spot)
+        return self.cut(~self.spot) if self.spot.any() else self
 
     def __len__(self) -> int:
         return int(self.t.size)
