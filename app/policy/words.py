@@ -49,7 +49,7 @@ _RELATIONS: Mapping[tuple[str, str], str] = {
     ("", "ph"): "below", ("", "gcs"): "below", ("", "pao2"): "below", ("", "paco2"): "above", ("", "sf"): "below",
     ("", "ipap"): "below", ("", "lactate"): "above", ("", "sbp"): "below", ("", "ml_per_kg"): "above",
     ("", "rr"): "above", ("", "pf"): "at or below", ("", "percent"): "above",
-    ("pf_below_150_ards", "pf"): "below",
+    ("rr_above_30", "rr"): "at or above",
     ("rate_below_12_drowsy", "rr"): "below", ("rate_below_12_drowsy", "gcs"): "at or below",
     ("weaning_ready", "rr"): "below", ("weaning_ready", "fio2"): "at or below",
     ("pao2_below_45_on_highest_oxygen", "fio2"): "at or above",

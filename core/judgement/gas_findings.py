@@ -25,6 +25,8 @@ SHOWN_UNUSUAL = ("ph", "paco2", "pao2")
 JUDGED_BY = frozenset({"ph", "paco2", "pao2", "hco3", "site", "gas_fio2"})
 """Channels of a gas that verdicts rest on: one of them that nobody confirmed puts the gas in doubt."""
 
+_DUST = 9
+"""Decimals of a P/F: 42.34 mmHg on 29 % make 146, which a float gives as 146.00000000000003, past its limit."""
 SATURATION_WITHIN = 5.0
 """Points of % between a reported saturation and the one that PO2 and pH make one expect (common practice)."""
 
@@ -52,6 +54,7 @@ def gas_figure(
         if result.reason is not None:
             reasons[name] = result.reason
     pf = _arterial(gas, reasons, "pf_mmHg", reasoned(oxygenation.pf_ratio, gas.pao2, fio2))
+    pf = pf if pf is None else round(pf, _DUST)
     gradient = reasoned(oxygenation.aa_gradient, gas.pao2, gas.paco2, fio2)
     aa = _arterial(gas, reasons, "aa_gradient_mmHg", gradient)
     if aa is not None and aa < 0:

@@ -65,7 +65,8 @@ def test_every_rule_is_told_with_source_and_certainty() -> None:
     assert "146 mmHg / 19.5 kPa" in told["markers.pf_low_at_1h"].limits
     assert told["markers.ph_below_715"].limits == "pH below 7.15"
     assert told["markers.hacor_8_or_more"].limits.startswith("points above 7")
-    assert told["markers.rr_above_30"].limits.startswith("respiratory rate above 30/min")
+    assert told["markers.rr_above_30"].limits.startswith("respiratory rate at or above 30/min")
+    assert told["markers.pf_below_150_ards"].limits.startswith("P/F at or below 150 mmHg")
     assert "respiratory rate below 25/min" in told["markers.weaning_ready"].limits
     assert told["state.hypercapnia_mmHg"].limits == "45 mmHg / 6.0 kPa"
     assert told["noise.paco2_mmHg"].limits == "3.3 mmHg / 0.44 kPa"

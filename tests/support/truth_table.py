@@ -121,9 +121,9 @@ ROWS = {
         COPD_FOR_LUNG,
     ),
     "pf_below_150_ards": Row(
-        LUNG.replace("pneumonia", "ards") + MORE + "02:00 ph 7.45 paco2 34 pao2 74 site arterial",
-        ("pao2 74", "pao2 75"),
-        ("pao2 74", ""),
+        LUNG.replace("pneumonia", "ards") + MORE + "02:00 ph 7.45 paco2 34 pao2 75 site arterial",
+        ("pao2 75", "pao2 75.1"),
+        ("pao2 75", ""),
         outside=("ards", "pneumonia"),
     ),
     "sf_below_985": Row(
@@ -234,13 +234,13 @@ ROWS = {
     ),
     **{
         f"rr_above_{n}": Row(
-            BASE + f"device rr_total 02:00 02:20 {n + 1} {n + 1}",
-            (f"{n + 1} {n + 1}", f"{n} {n}"),
-            (f"device rr_total 02:00 02:20 {n + 1} {n + 1}", f"02:00 rr {n + 1}"),
+            BASE + f"device rr_total 02:00 02:20 {first} {first}",
+            (f"{first} {first}", f"{first - 1} {first - 1}"),
+            (f"device rr_total 02:00 02:20 {first} {first}", f"02:00 rr {first}"),
             outside=OFF,
             as_of="02:30",
         )
-        for n in (25, 30, 35)
+        for n, first in ((25, 26), (30, 30), (35, 36))  # 30 counts itself (Confalonieri)
     },
     "backup_takeover": Row(
         COPD + START + TAKEN + "02:50 gcs 15\n03:20 gcs 14",
@@ -317,6 +317,11 @@ ROWS = {
     "gas_overdue": Row(BASE, ("12:00", "12:00"), (START, ""), as_of="03:01"),
     "skin_check_overdue": Row(BASE, ("12:00", "12:00"), (START, ""), outside=OFF, as_of="05:01"),
     "weaning_ready": Row(
-        BASE + WEANED, ("rr 20", "rr 25"), ("rr 20", "hr 90"), ("d1 02:00", "d1 00:30"), OFF, "d1 12:00"
+        BASE + WEANED,
+        ("d1 02:00 ph 7.38", "d1 02:00 ph 7.35"),
+        ("rr 20", "hr 90"),
+        ("d1 02:00", "d1 00:30"),
+        OFF,
+        "d1 12:00",
     ),
 }

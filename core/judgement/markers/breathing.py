@@ -27,8 +27,8 @@ def rr_above_25(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 
 def rr_above_30(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """Rate above 30, sustained, from an hour of support on."""
-    return _rr_above(seen, rule)
+    """Rate of 30 or more, sustained, from an hour of support on: its source counts 30 itself, unlike its key."""
+    return _rr_above(seen, rule, say.AT_LEAST)
 
 
 def rr_above_35(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -36,46 +36,55 @@ def rr_above_35(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     return _rr_above(seen, rule)
 
 
-def _rr_above(seen: Observed, rule: MarkerRule) -> list[Spell]:
-    """Two counts in a row above the limit, or the machine's rate for N of M minutes; a count beats the machine."""
+def _rr_above(seen: Observed, rule: MarkerRule, relation: str = say.ABOVE) -> list[Spell]:
+    """Two counts in a row past the limit, or the machine's rate for N of M minutes; a count beats the machine.
+
+    `relation`: above the limit, or at or above it.
+    """
     start = seen.support.start
     if start is None:
         return []
     first = start + int(rule.limits["after_min"] * MINUTE)
     counted = seen.spots("rr")
-    found = [*_by_machine(seen, rule, counted), *_by_count(rule, counted, first)]
+    found = [*_by_machine(seen, rule, counted, relation), *_by_count(rule, counted, first, relation)]
     return united(clipped(found, first, None))
 
 
-def _by_count(rule: MarkerRule, counted: Series, first: Instant) -> list[Spell]:
+def _past(rates: Values, limit: float, relation: str) -> Flags:
+    """Whether each rate is past the limit, shape (n,)."""
+    return np.asarray(rates >= limit if relation == say.AT_LEAST else rates > limit)
+
+
+def _by_count(rule: MarkerRule, counted: Series, first: Instant, relation: str) -> list[Spell]:
     limit = rule.limits["rr"]
+    high = _past(counted.v, limit, relation)
     points = []
     before: tuple[float, int] | None = None
-    for t, v in zip(counted.t.tolist(), counted.v.tolist(), strict=True):
+    for t, v, past in zip(counted.t.tolist(), counted.v.tolist(), high.tolist(), strict=True):
         if t < first:
             continue
-        if v <= limit:
+        if not past:
             points.append(Point(t, False))
-        elif before is not None and before[0] > limit:
-            told = tuple(say.value_is("rr", x, say.ABOVE, limit, at) for x, at in (before, (v, t)))
+        elif before is not None:
+            told = tuple(say.value_is("rr", x, relation, limit, at) for x, at in (before, (v, t)))
             points.append(Point(t, True, told))
-        before = (v, t)
+        before = (v, t) if past else None
     return from_points(points)
 
 
-def _by_machine(seen: Observed, rule: MarkerRule, counted: Series) -> list[Spell]:
+def _by_machine(seen: Observed, rule: MarkerRule, counted: Series, relation: str) -> list[Spell]:
     limit, n, m = rule.limits["rr"], int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
     found = []
     for channel in ("rr_total", "rr"):
-        if not (seen.machine(channel).v > limit).any() or seen.support.start is None:
+        if not _past(seen.machine(channel).v, limit, relation).any() or seen.support.start is None:
             continue
         worn = seen.worn_machine(channel)
         worn = worn.between(seen.support.start + int(rule.limits["after_min"] * MINUTE), seen.as_of)
-        v = np.where(_counted_lower(seen, worn, counted, limit), 0.0, worn.v)
-        for s in crossings(worn.t, v, limit, n, m):
+        high = _past(worn.v, limit, relation) & ~_counted_lower(seen, worn, counted, limit, relation)
+        for s in crossings(worn.t, high.astype(np.float64), 0.5, n, m):
             i, j = _span(worn, s)
             median = float(np.median(worn.v[i:j]))
-            told = say.sustained("rr", say.ABOVE, limit, s.minutes, s.start, int(worn.t[j - 1]), median)
+            told = say.sustained("rr", relation, limit, s.minutes, s.start, int(worn.t[j - 1]), median)
             found.append(Spell(s.start, s.end, (told,)))
     return found
 
@@ -85,14 +94,14 @@ def _span(series: Series, s: Crossing) -> tuple[int, int]:
     return int(i), int(j)
 
 
-def _counted_lower(seen: Observed, rates: Series, counted: Series, limit: float) -> Flags:
-    """Whether the newest fresh count says that the rate is not above the limit."""
+def _counted_lower(seen: Observed, rates: Series, counted: Series, limit: float, relation: str) -> Flags:
+    """Whether the newest fresh count says that the rate is not past the limit."""
     if not len(counted):
         return np.zeros(rates.t.shape, np.bool_)
     i = np.searchsorted(counted.t, rates.t, side="right") - 1
     k = np.maximum(i, 0)
     fresh = rates.t - counted.t[k] <= int(seen.policy.freshness.vitals_min.value * MINUTE)
-    return np.asarray((i >= 0) & fresh & (counted.v[k] <= limit))
+    return np.asarray((i >= 0) & fresh & ~_past(counted.v[k], limit, relation))
 
 
 def backup_takeover(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:

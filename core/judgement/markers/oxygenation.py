@@ -84,12 +84,12 @@ def pf_low_at_1h(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 
 def pf_below_150_ards(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """P/F below 150 mmHg on support in moderate ARDS."""
+    """P/F at or below 150 mmHg on support in moderate ARDS: its source sets them apart from those above 150."""
     points = []
     for gas in _arterial(seen):
         if gas.pf_mmHg is not None and seen.drawn_on_support(gas):
-            met = gas.pf_mmHg < rule.limits["pf"] and inside(seen, rule.population, gas.at)
-            told = say.value_is("pf", gas.pf_mmHg, say.BELOW, rule.limits["pf"], gas.at)
+            met = gas.pf_mmHg <= rule.limits["pf"] and inside(seen, rule.population, gas.at)
+            told = say.value_is("pf", gas.pf_mmHg, say.AT_MOST, rule.limits["pf"], gas.at)
             points.append(Point(gas.at, met, (told, *say.gas_doubts(gas))))
     return from_gases(seen, points)
 
@@ -118,7 +118,7 @@ def sf_below_985(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     usable = steady_fio2(seen, window.t) & (window.v <= seen.policy.oxygen.no_sf_above_spo2.value)
     usable &= seen.worn(window.t)
     spo2 = window.cut(usable)
-    sf = spo2.v / seen.settings.fio2.on(spo2.t)
+    sf = np.round(spo2.v / seen.settings.fio2.on(spo2.t), 9)  # without the dust of a binary quotient
     low = sf < rule.limits["sf"]
     if not low.any() or not inside(seen, rule.population, int(spo2.t[-1])):
         return []

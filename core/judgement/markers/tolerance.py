@@ -60,7 +60,10 @@ def not_tolerated(seen: Observed, _rule: MarkerRule) -> Iterable[Spell]:
 
 
 def weaning_ready(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
-    """Out of acidosis on two gases after a day of support, with a calm rate, SpO2 in range and little oxygen."""
+    """Out of acidosis on two gases after a day of support, with a calm rate, SpO2 in range and little oxygen.
+
+    The source asks for a pH above 7.35, so on the gas that says it a pH of 7.35 is not enough.
+    """
     start = seen.support.start
     if start is None:
         return []
@@ -81,7 +84,7 @@ def weaning_ready(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 def _ready(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tuple[bool, tuple[Message, ...]]:
     ph = seen.policy.state.acidotic_below_ph.value
-    if gas.ph is None or gas.ph < ph or gas.fio2 is None or gas.fio2 > rule.limits["fio2"]:
+    if gas.ph is None or gas.ph <= ph or gas.fio2 is None or gas.fio2 > rule.limits["fio2"]:
         return False, ()
     rate, spo2 = seen.rate_near(gas.at), seen.vitals.spo2(gas.at, 0, min(gas.at + HOUR // 2, seen.as_of))
     if rate is None or spo2 is None:
@@ -89,7 +92,7 @@ def _ready(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tuple[bool, tupl
     low, _ = seen.targets(np.array([gas.at], np.int64))
     met = rate.value < rule.limits["rr"] and spo2.value >= float(low[0])
     return met, (
-        say.value_is("ph", gas.ph, say.AT_LEAST, ph, gas.at, gas.ph_text),
+        say.value_is("ph", gas.ph, say.ABOVE, ph, gas.at, gas.ph_text),
         say.value_is("rr", rate.value, say.BELOW, rule.limits["rr"], rate.at),
         say.value_is("spo2", spo2.value, say.AT_LEAST, float(low[0]), spo2.at),
         say.value_is("fio2", gas.fio2, say.AT_MOST, rule.limits["fio2"], gas.at),

@@ -29,9 +29,10 @@ def test_under_the_shipped_policy_names_are_as_written(key: str) -> None:
     [
         ("ph_below_severe", "7.25 }", "7.2 }", "pH below 7.20"),
         ("ph_720_725_twice", "7.25,", "7.24,", "pH 7.24 or lower twice, 1 h apart"),
+        ("pf_below_150_ards", "150", "140", "P/F at or below 140 mmHg (18.7 kPa) in ARDS"),
         ("pf_low_at_1h", "146,", "150,", "P/F at or below 150 mmHg (20 kPa) after 1 h"),
         ("pao2_below_60", "mmHg = 60, kpa = 8.0", "mmHg = 55, kpa = 7.3", "PaO2 below 55 mmHg (7.3 kPa)"),
-        ("rr_above_30", "rr = 30", "rr = 32", "Respiratory rate above 32"),
+        ("rr_above_30", "rr = 30", "rr = 32", "Respiratory rate of 32 or more"),
         ("gcs_below_11", "gcs = 11", "gcs = 10", "GCS below 10"),
         ("sf_below_985", "98.5", "100", "S/F below 100"),
         ("hacor_8_or_more", "points = 7", "points = 8", f"HACOR of 8 or more ({OWN})"),

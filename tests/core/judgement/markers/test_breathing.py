@@ -35,6 +35,22 @@ def test_rate_above_25_sustained(log, expected):
         assert found == expected
 
 
+@pytest.mark.parametrize(
+    ("log", "expected"),
+    [
+        ("device rr_total 02:00 02:20 30 30", "02:00-"),  # Confalonieri: 30 or more
+        ("device rr_total 02:00 03:00 29 29", ""),
+        ("02:00 rr 30\n02:30 rr 30", "02:30-"),
+        ("02:00 rr 30\n02:30 rr 29", ""),
+        ("02:00 rr 30\n02:30 rr 31\n04:00 rr 29", "02:30-04:00"),
+        ("02:00 rr 30\ndevice rr_total 02:00 02:20 31 31", "02:00-"),  # a count of 30 does not say that it is lower
+        ("02:00 rr 29\ndevice rr_total 02:00 02:20 31 31", ""),
+    ],
+)
+def test_a_rate_of_30_counts_itself(log, expected):
+    assert met("rr_above_30", BASE + log, "04:30" if "04:00" in log else "02:30") == expected
+
+
 def test_each_limit_has_its_own_marker():
     log = BASE + "device rr_total 02:00 02:30 33 33"
     assert [met(f"rr_above_{n}", log) for n in (25, 30, 35)] == ["02:00-", "02:00-", ""]

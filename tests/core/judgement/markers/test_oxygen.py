@@ -144,11 +144,12 @@ def test_pf_at_one_hour_is_silent_in_hypercapnic_disease_unless_the_ward_wants_a
     assert met("pf_low_at_1h", log) == ""
 
 
-def test_pf_below_150_in_moderate_ards():
+def test_pf_at_or_below_150_in_moderate_ards():
     gas = "02:00 ph 7.45 paco2 34 pao2 {} site arterial"
     ards = LUNG.replace("pneumonia", "ards") + LUNG_START
     assert met("pf_below_150_ards", ards + gas.format(74)) == "02:00-"
-    assert met("pf_below_150_ards", ards + gas.format(75)) == ""
+    assert met("pf_below_150_ards", ards + gas.format(75)) == "02:00-"  # Thille parts those above 150 from the rest
+    assert met("pf_below_150_ards", ards + gas.format(75.1)) == ""
     assert met("pf_below_150_ards", LUNG + LUNG_START + gas.format(74)) == ""
     said = LUNG + "00:21 pulmonary_ards yes\n" + LUNG_START
     assert met("pf_below_150_ards", said + gas.format(74)) == "02:00-"
