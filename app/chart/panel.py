@@ -44,7 +44,7 @@ class PanelRow(ClockRow):
             for curve in drawn.curves:
                 self.view.addItem(curve, ignoreBounds=True)
         self.brackets = BracketStrip(self, spec.brackets) if spec.brackets else None
-        self.header = PanelHeader(self)
+        self.header = PanelHeader(self, spec)
 
     def _drawn(self, place: int) -> DrawnTrace:
         trace, c = self.spec.traces[place], self.theme.colours

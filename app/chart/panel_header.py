@@ -1,18 +1,13 @@
 """What stands in a panel's title line besides its title: what its bands mean, and why a stretch is in doubt."""
 
-from __future__ import annotations
-
 from math import inf
-from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 
 from app.chart.marks import hatch, solid_pen
-from app.chart.row import FRONT, Layer
-
-if TYPE_CHECKING:
-    from app.chart.panel import PanelRow
+from app.chart.row import FRONT, ClockRow, Layer
+from app.chart.shapes import PanelSpec
 
 _APART = 240
 """Pixels at 100 % between two stretches of one doubt from which its reason is said again."""
@@ -22,8 +17,8 @@ _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 class PanelHeader:
     """Words in the title line, so that none of them covers a value."""
 
-    def __init__(self, row: PanelRow) -> None:
-        self.row = row
+    def __init__(self, row: ClockRow, spec: PanelSpec) -> None:
+        self.row, self.spec = row, spec
         self.layer = Layer(row.item, FRONT, self._area, self._draw, clipped=True)
 
     def _area(self) -> QRectF:
@@ -31,19 +26,19 @@ class PanelHeader:
         return QRectF(view.pos().x(), 0, view.rect().width(), self.row.theme.px(28))
 
     def _draw(self, painter: QPainter) -> None:
-        row, theme = self.row, self.row.theme
+        row, spec, theme = self.row, self.spec, self.row.theme
         bold = row.metrics(bold=True, size=theme.type.body)
         taken = [(0.0, bold.horizontalAdvance(row.title) + theme.px(24))]
         painter.setFont(theme.font(theme.type.caption))
         painter.translate(self._area().left(), 0)
         key = taken[0][1]
-        for word, dashed in [(b.word, False) for b in row.spec.bands] + [(a.word, True) for a in row.spec.areas]:
+        for word, dashed in [(b.word, False) for b in spec.bands] + [(a.word, True) for a in spec.areas]:
             if word:
                 key += self._draw_key(painter, word, key, dashed=dashed)
         taken.append((taken[0][1], key))
         said: dict[str, float] = {}
-        for drawn in row.traces:
-            for span in drawn.trace.doubts:
+        for trace in spec.traces:
+            for span in trace.doubts:
                 x = float(row.frame().x(row.seconds(span.start)))
                 end = float(row.frame().x(row.seconds(span.end)))
                 if x - said.get(span.word, -inf) < theme.px(_APART):

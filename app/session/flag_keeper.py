@@ -1,42 +1,48 @@
 """Keeps the ledger told of flags: raised, no longer met, undone. After each commit, and as the clock moves on."""
 
-from __future__ import annotations
-
-from typing import TYPE_CHECKING
+from collections.abc import Callable
+from typing import Any, Protocol
 
 from PySide6.QtCore import QObject, QTimer, Slot
 
 from app.operations import flag as operations
-
-if TYPE_CHECKING:
-    from app.operations.outcome import Outcome
-    from app.session.model import SessionModel
-    from app.session.state import Changed
+from app.operations.outcome import Outcome
+from app.session.runner import Operation
+from app.session.state import Changed, Session, What
 
 EVERY_MS = 60_000
 """A gas falls overdue without anything being logged, so the clock is followed too."""
 
 
-class FlagKeeper(QObject):
-    """Follows a session while it is live and may write; a look back writes nothing."""
+class Followed(Protocol):
+    """A session whose episodes' flags are kept, and the way to its store."""
 
-    def __init__(self, model: SessionModel) -> None:
-        super().__init__(model)
-        self._model = model
+    @property
+    def session(self) -> Session: ...
+    def ask(self, operation: Operation, request: Any = None, *, done: Callable[[Outcome[Any]], None]) -> int: ...
+
+
+class FlagKeeper(QObject):
+    """Follows a session while it is live and may write; a look back writes nothing.
+
+    Whoever holds the session tells every change to `follow`.
+    """
+
+    def __init__(self, followed: Followed, parent: QObject) -> None:
+        super().__init__(parent)
+        self._followed = followed
         self._known: set[str] = set()
         self._clock = QTimer(self)
         self._clock.setInterval(EVERY_MS)
         self._clock.timeout.connect(self.look)
-        model.changed.connect(self._changed)
 
     def start(self) -> None:
         """Begin to follow the clock."""
         self._clock.start()
 
     def stop(self) -> None:
-        """Follow nothing any more."""
+        """Follow the clock no more."""
         self._clock.stop()
-        self._model.changed.disconnect(self._changed)
 
     @Slot()
     def look(self) -> None:
@@ -44,17 +50,16 @@ class FlagKeeper(QObject):
         self._ask(frozenset(self._known))
 
     @Slot(object)
-    def _changed(self, changed: Changed) -> None:
-        from app.session.state import What
-
+    def follow(self, changed: Changed) -> None:
+        """Something of the session has changed."""
         if changed.touches(What.RECORD, What.POLICY):
             self._known |= changed.episodes
             self._ask(changed.episodes if not changed.touches(What.POLICY) else frozenset(self._known))
 
     def _ask(self, episodes: frozenset[str]) -> None:
-        session = self._model.session
+        session = self._followed.session
         if episodes and session.is_live and not session.read_only:
-            self._model.ask(operations.keep_transitions, sorted(episodes), done=self._kept)
+            self._followed.ask(operations.keep_transitions, sorted(episodes), done=self._kept)
 
     def _kept(self, _outcome: Outcome[int]) -> None:
         """What was written comes back as any other commit."""

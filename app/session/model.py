@@ -48,7 +48,8 @@ class SessionModel(QObject):
         self._tick = QTimer(self)
         self._tick.setInterval(TICK_MS)
         self._tick.timeout.connect(self._ticked)
-        self.flags = FlagKeeper(self)
+        self.flags = FlagKeeper(self, self)
+        self.changed.connect(self.flags.follow)
 
     @property
     def session(self) -> Session:
@@ -67,6 +68,7 @@ class SessionModel(QObject):
         self._poll.stop()
         self._tick.stop()
         self.flags.stop()
+        self.changed.disconnect(self.flags.follow)
         self.runner.close()
 
     def ask(
