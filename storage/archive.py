@@ -25,6 +25,7 @@ from storage import opening, redraft, rules
 from storage import schema as s
 from storage.draft_batch import DraftBatch, DraftEntry, SourceFacts
 from storage.errors import store_error
+from storage.store_file import remove_store
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -110,7 +111,7 @@ def write(store: Store, episodes: Sequence[str], path: Path, *, by: str, now: In
             made.record_event("archived", person=by, now=now, detail=", ".join(episodes))
             made.put_fact(opening.ARCHIVE, "yes")
     except BaseException:
-        opening.remove(path)
+        remove_store(path)
         raise
     store.record_event("archived", person=by, now=now, detail=f"{path.name}: {len(episodes)} episodes")
     return Archived(path, tuple(episodes), *counts)

@@ -1,17 +1,15 @@
-"""Backup and restore. A backup is one step of the driver's own copying, never a copy of the live file."""
+"""Taking a backup: one step of the driver's own copying, never a copy of the live file."""
 
 from __future__ import annotations
 
 import os
-import shutil
 from contextlib import closing
 from pathlib import Path
 
-from core.record.message import Message
-from storage import keys, opening
-from storage.engine import PAGE_BYTES, Database, driver_errors, raw_connection
-from storage.errors import StoreError, os_failure, store_error, translated
-from storage.verify import findings
+from storage import keys
+from storage.engine import driver_errors, raw_connection
+from storage.errors import os_failure, store_error, translated
+from storage.store_file import remove_store
 
 
 def backup(store: Path, key: bytes | None, target: Path) -> None:
@@ -20,13 +18,13 @@ def backup(store: Path, key: bytes | None, target: Path) -> None:
     Raises:
         StoreError: `store.exists`, `store.no_folder`, `store.disk_full`, `store.damaged`.
     """
-    _check_free(target)
+    check_free(target)
     unfinished = target.with_name(target.name + ".unfinished")
     unfinished.unlink(missing_ok=True)
     try:
-        _copy_in_one_step(store, key, unfinished)
-        _check_opens(unfinished, key)
-        _sync(unfinished)
+        copy_in_one_step(store, key, unfinished)
+        check_opens(unfinished, key)
+        sync_file(unfinished)
         if key is not None:
             keys.write_envelope(keys.envelope_path(target), keys.read_envelope(keys.envelope_path(store)))
         os.replace(unfinished, target)
@@ -36,160 +34,49 @@ def backup(store: Path, key: bytes | None, target: Path) -> None:
     except OSError as error:
         raise os_failure(error, "store.backup_failed", target) from error
     finally:
-        opening.remove(unfinished)
+        remove_store(unfinished)
         if not target.exists():
             keys.envelope_path(target).unlink(missing_ok=True)
 
 
-def _check_free(target: Path) -> None:
+def check_free(target: Path) -> None:
+    """Refuse a place that is taken, or that has no folder.
+
+    Raises:
+        StoreError: `store.exists`, `store.no_folder`.
+    """
     if target.exists() or keys.envelope_path(target).exists():
         raise store_error("store.exists", path=target.name)
     if not target.parent.is_dir():
         raise store_error("store.no_folder", path=str(target.parent))
 
 
-def _copy_in_one_step(store: Path, key: bytes | None, target: Path, mode: str = "rw") -> None:
+def copy_in_one_step(store: Path, key: bytes | None, target: Path, mode: str = "rw") -> None:
+    """Copy a store as it stands at one moment, whatever is being written, into one file with nothing beside it."""
     target.touch(mode=0o600)  # for its owner's eyes alone
     with (
         closing(raw_connection(store, key, mode=mode)) as live,
         closing(raw_connection(target, key, mode="rwc")) as copy,
     ):
         live.backup(copy, pages=-1)
-        copy.execute("PRAGMA journal_mode = DELETE")  # one file, nothing beside it
+        copy.execute("PRAGMA journal_mode = DELETE")
 
 
-def _check_opens(path: Path, key: bytes | None) -> None:
-    """A backup that cannot be read is no backup."""
+def check_opens(path: Path, key: bytes | None) -> None:
+    """Refuse a copy that cannot be read: it is no backup.
+
+    Raises:
+        StoreError: `store.damaged`; or the driver's own error.
+    """
     with closing(raw_connection(path, key, mode="ro")) as copy:
         if copy.execute("PRAGMA quick_check(1)").fetchone()[0] != "ok":
             raise store_error("store.damaged", path=path.name, detail="backup")
 
 
-def _sync(path: Path) -> None:
-    """Ask the disk to keep it."""
+def sync_file(path: Path) -> None:
+    """Ask the disk to keep a file that was written."""
     descriptor = os.open(path, os.O_RDWR)
     try:
         os.fsync(descriptor)
     finally:
         os.close(descriptor)
-
-
-def restore(source: Path, new: Path, passphrase: str | None = None) -> Message | None:
-    """Make a new store of a backup, with its envelope; whole or not at all, and nothing is overwritten.
-
-    A plain backup is verified before it is taken, an encrypted one when its passphrase is given. Without it only
-    what needs no key is looked at, and what was not is told: the answer is None where all was.
-
-    Raises:
-        StoreError: `store.missing`, `store.exists`, `store.not_a_store`, `store.damaged`, `key.*`.
-    """
-    if not source.is_file():
-        raise store_error("store.missing", path=source.name)
-    _check_free(new)
-    encrypted = opening.is_encrypted(source)
-    if encrypted:
-        keys.check_envelope(keys.read_envelope(keys.envelope_path(source)))
-        if not _journal_of(source):
-            _check_whole_pages(source)
-    unfinished = new.with_name(new.name + ".unfinished")
-    try:
-        key = opening.data_key(source, passphrase) if encrypted and passphrase is not None else None
-        _copy(source, unfinished, key, closed=encrypted and key is None)
-        if key is not None or not encrypted:
-            _check_sound(unfinished, key)
-        _sync(unfinished)
-        if encrypted:
-            keys.write_envelope(keys.envelope_path(new), keys.read_envelope(keys.envelope_path(source)))
-        os.replace(unfinished, new)
-        keys.sync_folder(new.parent)
-        return Message("restore.not_checked", {"path": source.name}) if encrypted and passphrase is None else None
-    except StoreError as error:
-        raise _of_the_backup(error, source, unfinished) from error
-    except driver_errors() as error:
-        told = translated(error, source)
-        raise translated(error, new) if told.message.key == "store.disk_full" else told from error
-    except OSError as error:
-        raise os_failure(error, "store.restore_failed", new) from error
-    finally:
-        opening.remove(unfinished)
-        if not new.exists():
-            keys.envelope_path(new).unlink(missing_ok=True)
-
-
-def _of_the_backup(error: StoreError, source: Path, unfinished: Path) -> StoreError:
-    """What is wrong with the copy is wrong with the file that was given: that one is named."""
-    named, values = {unfinished.name, unfinished.name.removesuffix(".unfinished")}, dict(error.message.values)
-    if error.message.key != "store.exists" and values.get("path") in named:
-        values["path"] = source.name
-    return StoreError(Message(error.message.key, values))
-
-
-def _journal_of(store: Path) -> int:
-    """The bytes of a journal that lies beside a store: a file that was copied with one is not whole without it."""
-    journal = store.with_name(store.name + "-wal")
-    return journal.stat().st_size if journal.is_file() else 0
-
-
-def _copy(source: Path, target: Path, key: bytes | None, *, closed: bool) -> None:
-    """A copy of a backup. A store that was copied with its journal holds its newest entries there: they come along.
-
-    Raises:
-        StoreError: `store.needs_passphrase` where a journal could only be read with it.
-    """
-    if not _journal_of(source):
-        target.touch(mode=0o600)
-        shutil.copyfile(source, target)
-    elif closed:
-        raise store_error("store.needs_passphrase", path=source.name)
-    else:
-        _copy_in_one_step(source, key, target, mode="ro")
-
-
-_DAMAGE = (
-    "verify.pages",
-    "verify.chain",
-    "verify.orphan",
-    "verify.chunk",
-    "verify.document",
-    "verify.unreadable",
-)
-"""Findings that make a backup unfit: what it says is not what was recorded."""
-
-
-def _check_whole_pages(path: Path) -> None:
-    """What a file without its key can still tell: a copy that was cut off is no whole number of pages."""
-    size = path.stat().st_size
-    if size < 2 * PAGE_BYTES or size % PAGE_BYTES:
-        raise store_error("store.damaged", path=path.name, detail=f"{size} bytes are no whole number of pages")
-
-
-def _bring_along(path: Path, key: bytes | None) -> None:
-    """A copy of a backup of an older format, brought up to date; the backup itself stays as it was."""
-    database = Database(path, key, mode="ro")
-    try:
-        opening.check_facts(database)
-    except StoreError as error:
-        if error.message.key != "store.older":
-            raise
-        from storage.migrate.upgrade import migrate
-
-        database.close()
-        migrate(path, key, None)
-    finally:
-        database.close()
-
-
-def _check_sound(path: Path, key: bytes | None) -> None:
-    try:
-        _check_opens(path, key)
-    except driver_errors() as error:
-        raise translated(error, path) from error
-    _bring_along(path, key)
-    database = Database(path, key, mode="ro")
-    try:
-        opening.check_facts(database)
-        wrong = [m for m in findings(database, encrypted=key is not None) if m.key in _DAMAGE]
-    finally:
-        database.close()
-    if wrong:
-        raise store_error("store.damaged", path=path.name.removesuffix(".unfinished"), detail=wrong[0].key)

@@ -9,22 +9,23 @@ from typing import Any
 
 import sqlalchemy as sa
 
-from storage import keys, opening
+from storage import keys
 from storage import schema as s
 from storage.damaged_pages import Pages
 from storage.engine import driver_errors, raw_connection
 from storage.errors import StoreError, store_error
 from storage.leaf_rows import LeafRows, Row, is_sound
+from storage.store_file import data_key
 
 
 def key_of(path: Path, passphrase: str | None) -> bytes | None:
     """The key of a store whose first page may be lost: what has no key file and holds our rows is a plain store.
 
     Raises:
-        StoreError: as `opening.data_key`.
+        StoreError: as `data_key`.
     """
     try:
-        return opening.data_key(path, passphrase)
+        return data_key(path, passphrase)
     except StoreError:
         if keys.envelope_path(path).exists():
             raise

@@ -1,8 +1,7 @@
-"""Creating and opening a store's file: format, key, triggers, and what the place allows."""
+"""Creating and opening a store: its schema and triggers, migrating an older one, and what the place allows."""
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from datetime import UTC, datetime
 from pathlib import Path
@@ -12,11 +11,11 @@ import sqlalchemy as sa
 
 from core.record.message import Message
 from storage import facts_kept, keys, place, schema
-from storage.engine import APPLICATION_ID, BUSY_SECONDS, Database, application_id, driver_errors, make_durable
+from storage.engine import BUSY_SECONDS, Database, driver_errors, make_durable
 from storage.errors import StoreError, store_error, translated
+from storage.migrate.upgrade import bring_up_to_date
+from storage.store_file import check_facts, data_key, newer_notice, remove_store
 from storage.triggers import create_triggers, trigger_findings
-
-_PLAIN_HEADER = b"SQLite format 3\x00"
 
 
 @dataclass(frozen=True, slots=True)
@@ -75,22 +74,12 @@ def _make(path: Path, key: bytes | None, envelope: str, facts: dict[str, str]) -
             raise
     except driver_errors() as error:
         failed = translated(error, path)  # told while the file is there
-        remove(path)
+        remove_store(path)
         raise failed from error
     except BaseException:
-        remove(path)
+        remove_store(path)
         raise
     return database
-
-
-def remove(path: Path) -> None:
-    """Remove a store that could not be finished, with all that lies beside it."""
-    for made in (
-        path,
-        keys.envelope_path(path),
-        *(path.with_name(path.name + end) for end in ("-wal", "-shm", "-journal")),
-    ):
-        made.unlink(missing_ok=True)
 
 
 def _claim(path: Path) -> None:
@@ -180,8 +169,6 @@ def open_store(path: Path, passphrase: str | None, read_only: bool, busy: float 
 
 def _migrated(path: Path, passphrase: str | None, busy: float, older: StoreError) -> Opened:
     """A store of an older format, brought up to date and opened; its backup lies beside it and is told of."""
-    from storage.migrate.upgrade import bring_up_to_date
-
     kept = path.with_name(f"{path.stem}.{datetime.now(UTC):%Y%m%dT%H%M%SZ}.luff")
     if not bring_up_to_date(path, passphrase, kept):
         raise older
@@ -198,73 +185,3 @@ def _mode(path: Path, read_only: bool) -> str:
     journal = path.with_name(path.name + "-wal")
     folder_closed = not place.can_write(path) and not journal.exists()
     return "immutable" if folder_closed else "ro"
-
-
-def is_encrypted(path: Path) -> bool:
-    """Whether a store's file is encrypted: a plain one begins with the open format's mark."""
-    with path.open("rb") as file:
-        return file.read(len(_PLAIN_HEADER)) != _PLAIN_HEADER
-
-
-def data_key(path: Path, passphrase: str | None) -> bytes | None:
-    """The key of a store's file, or None for a plain one.
-
-    Raises:
-        StoreError: `store.not_a_store`, `store.needs_passphrase`, `key.*`.
-    """
-    envelope = keys.envelope_path(path)
-    if not is_encrypted(path):
-        return None
-    if not envelope.exists():
-        with path.open("rb") as file:
-            looks_random = len(set(file.read(4096))) > 200
-        if looks_random:
-            raise store_error("key.envelope_missing", path=envelope.name)
-        raise store_error("store.not_a_store", path=path.name)
-    text = keys.read_envelope(envelope)
-    keys.check_envelope(text)  # nobody is asked for a passphrase that could open nothing
-    if passphrase is None:
-        raise store_error("store.needs_passphrase", path=path.name)
-    return keys.open_envelope(text, passphrase)
-
-
-def check_facts(database: Database) -> dict[str, str]:
-    """The store's own facts, once its format is known to be ours.
-
-    Raises:
-        StoreError: `store.not_a_store`, `store.newer`, `store.older`.
-    """
-    try:
-        with database.read() as connection:
-            if application_id(connection) != APPLICATION_ID:
-                raise store_error("store.not_a_store", path=database.path.name)
-            facts = facts_kept.read(connection)
-    except StoreError as error:
-        if "no such table" in str(error):
-            raise store_error("store.not_a_store", path=database.path.name) from error
-        if error.message.key == "store.damaged" and database.is_keyed:
-            raise store_error("store.damaged", **{**error.message.values, "first": "page"}) from error
-        raise
-    _check_format(facts, database.path)
-    return facts
-
-
-def newer_notice(facts: Mapping[str, str], path: Path) -> Message | None:
-    """What to say of a store of a newer format that this program may still read; None for one of its own."""
-    if int(facts["format"]) <= schema.FORMAT:
-        return None
-    return Message("store.newer_read_only", {"path": path.name, "format": int(facts["format"])})
-
-
-def _check_format(facts: Mapping[str, str], path: Path) -> None:
-    """A newer format is refused unless the store itself says from which format on it can be read: a program
-    must not guess what it does not know."""
-    text, least = facts.get("format", ""), facts.get("readable_from", "")
-    if not text.isdigit():
-        raise store_error("store.not_a_store", path=path.name)
-    found = int(text)
-    readable = least.isdigit() and int(least) <= schema.FORMAT
-    if found > schema.FORMAT and not readable:
-        raise store_error("store.newer", path=path.name, format=found, accepted=schema.FORMAT)
-    if found < schema.FORMAT:
-        raise store_error("store.older", path=path.name, format=found, accepted=schema.FORMAT)

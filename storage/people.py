@@ -19,6 +19,7 @@ from typing import TYPE_CHECKING, Any
 from core.record.instant import SECOND, Instant
 from core.record.message import refuse
 from storage.keys import Cost, new_recovery_code, plain_code
+from storage.person_events import PersonEvent
 
 if TYPE_CHECKING:
     from storage.draft_batch import Receipt
@@ -38,19 +39,6 @@ _MANAGED = (ADDED, PIN_SET, ROLE_SET, RETIRED)
 _TRIES = 20
 _PATIENCE = 2.0
 """Seconds for which a try waits for another window to end its writing, so that it is kept."""
-
-
-@dataclass(frozen=True, slots=True)
-class PersonEvent:
-    """One event of the chain that concerns a person. `by` is who did it; `skew` as in the batch."""
-
-    seq: int
-    person: str
-    event: str
-    detail: str
-    by: str
-    recorded_at: Instant
-    skew: int = 0
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,13 +1,27 @@
-"""Reading the events of the chain that are no entries: people, sign-ins, prints, exports, policies put in force."""
+"""The events of the chain that are no entries: people, sign-ins, prints, exports, policies put in force."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 
 import sqlalchemy as sa
 
+from core.record.instant import Instant
 from storage import schema as s
-from storage.people import PersonEvent
+
+
+@dataclass(frozen=True, slots=True)
+class PersonEvent:
+    """One event of the chain that concerns a person. `by` is who did it; `skew` as in the batch."""
+
+    seq: int
+    person: str
+    event: str
+    detail: str
+    by: str
+    recorded_at: Instant
+    skew: int = 0
 
 
 def person_events(

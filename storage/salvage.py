@@ -17,7 +17,7 @@ from typing import TYPE_CHECKING, Any
 
 from core.record.instant import Instant
 from core.record.message import RecordError
-from storage import keys, opening, redraft, rules, settings_kept
+from storage import keys, redraft, rules, settings_kept
 from storage import schema as s
 from storage.chain import batch_hash, row_digest, rows_digest
 from storage.chunks import decode
@@ -25,6 +25,7 @@ from storage.damaged_reading import DamagedLedger, key_of
 from storage.draft_batch import DraftBatch, DraftChunk, DraftEntry, SourceFacts
 from storage.errors import StoreError, store_error
 from storage.leaf_rows import Row
+from storage.store_file import remove_store
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -88,7 +89,7 @@ def salvage(
                           "lost_batches": found.lost_batches, "doubtful": found.doubtful}  # fmt: skip
                 made.record_event(SALVAGED, person=by, now=now, detail=json.dumps(detail))
         except BaseException:
-            opening.remove(new)
+            remove_store(new)
             raise
     finally:
         ledger.close()

@@ -7,11 +7,12 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from core.record.message import Message
-from storage import keys, opening, restore_report
+from storage import keys, restore_report
 from storage import schema as s
 from storage.chain import GENESIS, last_batch
 from storage.engine import page_findings
 from storage.errors import StoreError, store_error
+from storage.store_file import newer_notice
 from storage.store_kept import StoreKept
 
 
@@ -38,7 +39,7 @@ class StoreCare(StoreKept):
         """
         from storage.verify import findings
 
-        if newer := opening.newer_notice(self._opened.facts, self.path):
+        if newer := newer_notice(self._opened.facts, self.path):
             raise store_error("store.newer", **newer.values, accepted=s.FORMAT)
 
         return findings(self._opened.database, encrypted=self.is_encrypted, step=step)
@@ -75,7 +76,7 @@ class StoreCare(StoreKept):
         Raises:
             StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`, `key.*`.
         """
-        from storage.backup import restore
+        from storage.restore import restore
 
         return restore(Path(backup_path), Path(new_path), passphrase)
 

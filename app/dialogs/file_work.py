@@ -111,7 +111,7 @@ class FileWork(SecretDialog):
 
     def needs_passphrase(self, path: Path) -> bool:
         """Whether the file is encrypted; one that is not there yet may be."""
-        from storage.opening import is_encrypted
+        from storage.store_file import is_encrypted
 
         try:
             return is_encrypted(path)

@@ -191,7 +191,7 @@ def _require_right(source: Store, who: str, request: RestoreRequest) -> None:
 
 def is_encrypted_and_closed(path: Path, passphrase: str | None) -> bool:
     """Whether a backup is there and cannot be looked into for want of its passphrase."""
-    from storage.opening import is_encrypted
+    from storage.store_file import is_encrypted
 
     return not path.is_file() or (is_encrypted(path) and passphrase is None)
 

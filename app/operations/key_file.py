@@ -31,9 +31,10 @@ def put_back(store: object, who: str, now: Instant, request: PutBack) -> Outcome
     Raises:
         StoreError: `store.missing`, `key.*`, `key.of_another_store`.
     """
-    from storage import keys, opening
+    from storage import keys
     from storage.engine import Database
     from storage.store import Store
+    from storage.store_file import check_facts
 
     if not request.store.is_file():
         raise store_error("store.missing", path=request.store.name)
@@ -41,7 +42,7 @@ def put_back(store: object, who: str, now: Instant, request: PutBack) -> Outcome
     key = keys.open_envelope(text, request.passphrase)
     database = Database(request.store, key, mode="ro")
     try:
-        opening.check_facts(database)
+        check_facts(database)
     except StoreError as error:
         if error.message.key in ("store.damaged", "store.not_a_store"):
             raise store_error("key.of_another_store", path=request.store.name) from error

@@ -11,9 +11,11 @@ from typing import TYPE_CHECKING, Any
 
 import sqlalchemy as sa
 
-from storage import backup, facts_kept, opening, place, schema
+from storage import facts_kept, place, schema
+from storage.backup import backup
 from storage.engine import Database
 from storage.errors import store_error
+from storage.store_file import data_key
 from storage.triggers import create_triggers, expected_triggers
 
 if TYPE_CHECKING:
@@ -32,7 +34,7 @@ def bring_up_to_date(path: Path, passphrase: str | None, backup_to: Path, script
     if not path.is_file():
         raise store_error("store.missing", path=path.name)
     place.refuse_network_share(path)
-    return migrate(path, opening.data_key(path, passphrase), backup_to, scripts)
+    return migrate(path, data_key(path, passphrase), backup_to, scripts)
 
 
 def migrate(path: Path, key: bytes | None, backup_to: Path | None, scripts: Path = SCRIPTS) -> tuple[str, ...]:
@@ -47,7 +49,7 @@ def migrate(path: Path, key: bytes | None, backup_to: Path | None, scripts: Path
         directory = _directory(scripts)
         waiting = _waiting(database, directory)
         if waiting and backup_to is not None:
-            backup.backup(path, key, backup_to)
+            backup(path, key, backup_to)
         for revision in waiting:
             _step(database, directory, revision)
         return tuple(waiting)

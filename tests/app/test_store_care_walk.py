@@ -24,9 +24,10 @@ from app.window.main import MainWindow
 from storage import people
 from storage.engine import PAGE_BYTES
 from storage.keys import Cost, envelope_path
-from storage.opening import is_encrypted
 from storage.people import PIN_COST
+from storage.person_events import PersonEvent
 from storage.store import Store
+from storage.store_file import is_encrypted
 from tests.support.walk import Walk
 
 SECRET, LATER = "four quiet boats tonight", "five other boats tomorrow"
@@ -169,7 +170,7 @@ def comes_in_by_the_code(walk: Walk, code: str) -> None:
     walk.until(lambda: window.model.session.person == "AB")
 
 
-def events_of(window: MainWindow) -> tuple[people.PersonEvent, ...]:
+def events_of(window: MainWindow) -> tuple[PersonEvent, ...]:
     with Store.open(window.model.session.store_path, passphrase=SECRET, read_only=True) as store:
         return store.person_events()
 

@@ -8,7 +8,7 @@ from pathlib import Path
 
 import pytest
 
-from storage.opening import data_key
+from storage.store_file import data_key
 from storage.salvage import salvage
 from storage.store import Store
 from tests.support.flips import (

@@ -9,8 +9,8 @@ from pathlib import Path
 import pytest
 
 from storage.keys import Cost
-from storage.opening import data_key
 from storage.store import Store
+from storage.store_file import data_key
 from tests.storage.conftest import NOW
 from tests.support import bad_stores
 from tests.support.ended_early import (

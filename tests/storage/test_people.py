@@ -14,7 +14,8 @@ from core.record.instant import HOUR, SECOND
 from core.record.message import RecordError
 from storage import people
 from storage.keys import Cost
-from storage.people import LEAD, SIGNED_IN, STAFF, TURNED_AWAY, PersonEvent
+from storage.people import LEAD, SIGNED_IN, STAFF, TURNED_AWAY
+from storage.person_events import PersonEvent
 from storage.store import Store
 from tests.storage.conftest import NOW, PASSPHRASE
 

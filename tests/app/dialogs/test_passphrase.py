@@ -9,7 +9,7 @@ from PySide6.QtWidgets import QLineEdit
 
 from app.keeping.preferences import Preferences
 from app.window.main import MainWindow
-from storage.opening import is_encrypted
+from storage.store_file import is_encrypted
 from storage.store import Store
 from tests.support.open_window import NOW, settled, until
 
