@@ -92,7 +92,7 @@ class ClosingDeeds(WritingDeeds):
             "No printer is set up on this computer. Ctrl+P saves the sheet as a PDF.")  # fmt: skip
         self.window.say(told)
         self._printed = f"{content.ward.shift}, {content.head}"
-        preview = HandoverPreview(content, self.window, self.window.preferences.paper)
+        preview = HandoverPreview(content, self.window.theme, self.window, self.window.preferences.paper)
         preview.accepted.connect(self._note_print)
         preview.failed.connect(self._not_on_paper)
         preview.open()

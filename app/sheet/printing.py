@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import Final
 
 from PySide6.QtCore import QBuffer, QIODevice, QMarginsF
-from PySide6.QtGui import QGuiApplication, QPagedPaintDevice, QPageLayout, QPageSize, QPainter, QPdfWriter
+from PySide6.QtGui import QColor, QGuiApplication, QPagedPaintDevice, QPageLayout, QPageSize, QPainter, QPdfWriter
 
 from app.keeping.whole_file import write_whole
 from app.operations.outcome import report
@@ -130,7 +130,8 @@ class _Job:
         if self._number:
             self._device.newPage()
         self._number += 1
-        self._draw_head(title, subtitle, standing)
+        self._press.painter.setPen(QColor("white"))  # a preview records changes alone: black must be one, or the
+        self._draw_head(title, subtitle, standing)  # dark look's own ink, which is nearly white, stands in for it
         self._draw_foot()
 
     def _draw_head(self, title: str, subtitle: str, standing: str) -> None:

@@ -26,8 +26,6 @@ from tests.support.open_window import make_store, open_window, settled
 
 BASES = {"AskingDialog", "FittedDialog", "SecretDialog", "FileWork", "PreviewedForm", "EntryForm"}
 """What dialogs are made from; none of them is shown by itself."""
-QT_S_OWN = {"HandoverPreview"}
-"""Qt's print preview, with Qt's own tools inside."""
 
 
 def classes(base=QDialog):
@@ -154,21 +152,13 @@ def test_no_dialog_of_the_program_is_left_out(qtbot, tmp_path):
 
 def test_every_control_of_every_dialog_has_a_name(qtbot, tmp_path):
     with opened(qtbot, tmp_path) as window:
-        silent = {
-            name: unspoken(dialog)
-            for name, dialog in walked(qtbot, window, tmp_path)
-            if type(dialog).__name__ not in QT_S_OWN and unspoken(dialog)
-        }
+        silent = {name: unspoken(dialog) for name, dialog in walked(qtbot, window, tmp_path) if unspoken(dialog)}
     assert silent == {}
 
 
 def test_where_the_keys_go_is_seen_in_every_dialog(qtbot, tmp_path):
     with opened(qtbot, tmp_path) as window:
-        dull = {
-            name: found
-            for name, dialog in walked(qtbot, window, tmp_path)
-            if type(dialog).__name__ not in QT_S_OWN and (found := unseen(dialog))
-        }
+        dull = {name: found for name, dialog in walked(qtbot, window, tmp_path) if (found := unseen(dialog))}
     assert dull == {}
 
 
@@ -186,8 +176,6 @@ def test_no_dialog_is_cut_or_rolls_sideways_with_large_text(qtbot, tmp_path, sca
     with opened(qtbot, tmp_path, scale) as window:
         wrong = {}
         for name, dialog in walked(qtbot, window, tmp_path):
-            if type(dialog).__name__ in QT_S_OWN:
-                continue
             outgrows = dialog.width() > 1280 or dialog.height() > 800
             if found := [*cut(dialog), *([f"{dialog.size()}"] if outgrows else [])]:
                 wrong[name] = found

@@ -5,11 +5,13 @@ from pathlib import Path
 
 import pytest
 from pypdf import PdfReader
-from PySide6.QtCore import Qt
-from PySide6.QtPrintSupport import QPrinter
-from PySide6.QtWidgets import QApplication, QToolBar
+from PySide6.QtCore import QRect, Qt
+from PySide6.QtGui import QPageLayout
+from PySide6.QtPrintSupport import QPrintDialog, QPrinter
+from PySide6.QtWidgets import QApplication, QDialog, QGraphicsView
 
 from app.dialogs.print_preview import HandoverPreview
+from app.keeping.preferences import Preferences
 from app.operations import handover
 from app.operations.last_handover import facts_of
 from app.operations.outcome import CancelledError, watched
@@ -102,7 +104,7 @@ def test_a_full_disk_is_told_and_the_typed_remark_stays(qtbot, window, tmp_path)
 def test_a_printer_that_takes_nothing_is_told(qtbot, window):
     with Store.open(window.model.session.store_path) as store:
         made = handover.prepare(store, "AB", NOW, window.doers.ward.handover_request()).value
-    preview = HandoverPreview(sheet_content(made, window.reader), window)
+    preview = HandoverPreview(sheet_content(made, window.reader), window.theme, window)
     qtbot.addWidget(preview)
     preview.failed.connect(window.doers.review._not_on_paper)
     gone = QPrinter(QPrinter.PrinterMode.HighResolution)
@@ -199,17 +201,54 @@ def test_stopped_at_any_report_there_is_no_file_and_nothing_in_the_chain(qapp, t
         assert store.head() > head
 
 
-def test_page_setup_and_print_are_in_sight_in_the_preview(qtbot, window):
+def preview_of(qtbot, window):
     with Store.open(window.model.session.store_path) as store:
         made = handover.prepare(store, "AB", NOW, window.doers.ward.handover_request()).value
-    preview = HandoverPreview(sheet_content(made, window.reader), window)
+    preview = HandoverPreview(sheet_content(made, window.reader), window.theme, window)
     preview.show()
     qtbot.waitExposed(preview)
-    (bar,) = preview.findChildren(QToolBar)
-    for action in bar.actions()[-2:]:
-        button = bar.widgetForAction(action)
-        assert button.isVisible()
-        assert bar.rect().contains(button.geometry())
-        assert button.text()
-    assert preview.pages == 3
-    preview.close()
+    until(qtbot, lambda: preview.pages == 3)
+    return preview
+
+
+def test_the_preview_turns_its_pages_and_prints_upright(qtbot, window, tmp_path, monkeypatch):
+    preview = preview_of(qtbot, window)
+    assert preview.place.text() == "Page 1 of 3"
+    assert not preview.before.isEnabled()
+    preview.after.click()
+    preview.after.click()
+    assert preview.place.text() == "Page 3 of 3"
+    assert not preview.after.isEnabled()
+
+    def lying(dialog):
+        printer = dialog.printer()
+        printer.setOutputFormat(QPrinter.OutputFormat.PdfFormat)
+        printer.setOutputFileName(str(tmp_path / "out.pdf"))
+        printer.setPageOrientation(QPageLayout.Orientation.Landscape)
+        return QDialog.DialogCode.Accepted
+
+    monkeypatch.setattr(QPrintDialog, "exec", lying)
+    with qtbot.waitSignal(preview.accepted):
+        preview.print_button.click()
+    pages = PdfReader(tmp_path / "out.pdf").pages
+    assert len(pages) == 3
+    assert all(page.mediabox.height > page.mediabox.width for page in pages)
+
+
+def test_the_preview_is_black_on_white_in_the_dark_look_too(qtbot, tmp_path):
+    dark = Preferences(theme="dark", cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "w.luffmark"), preferences=dark) as window:
+        preview = preview_of(qtbot, window)
+        (sheet,) = preview.view.findChildren(QGraphicsView)
+        page = max(sheet.items(), key=lambda i: (i.boundingRect().height(), -i.sceneBoundingRect().top()))
+        seen = sheet.mapFromScene(page.sceneBoundingRect()).boundingRect()
+        title = QRect(
+            seen.x() + seen.width() // 20, seen.y() + seen.height() // 40, seen.width() // 4, seen.height() // 50
+        )
+        image = sheet.viewport().grab(title).toImage()
+        assert not image.isNull()
+        shades = [image.pixelColor(x, y).lightness() for x in range(image.width()) for y in range(image.height())]
+        assert max(shades) > 240
+        darkest = min(shades)
+        assert darkest < 60
+        preview.close()
