@@ -100,11 +100,16 @@ def is_off_support(at: Instant, support: SupportTime, policy: Policy) -> bool:
     """
     if support.start is None or at < support.start:
         return False
-    if support.end is not None and at // MINUTE > support.end // MINUTE:
+    if _after_the_end(at, support):
         return True
     settle = int(policy.response.off_support_after_break_min.value * MINUTE)
     began = (b for b in support.breaks if b.start // MINUTE < at // MINUTE)
     return any(b.end is None or at <= b.end + settle for b in began)
+
+
+def _after_the_end(at: Instant, support: SupportTime) -> bool:
+    """Whether support had ended before the minute of a gas."""
+    return support.end is not None and at // MINUTE > support.end // MINUTE
 
 
 def state_of(gas: GasSample, policy: Policy, reasons: dict[str, Message] | None = None) -> str | None:
@@ -132,8 +137,9 @@ def state_of(gas: GasSample, policy: Policy, reasons: dict[str, Message] | None 
 def _fio2(
     gas: GasSample, settings: SettingsInForce, support: SupportTime, policy: Policy, warnings: list[Message]
 ) -> tuple[float, str | None]:
-    """The FiO2 of a gas: its own beats the setting. A difference asks. In a break the setting says nothing."""
-    setting = float("nan") if support.drawn_in(gas.at) is not None else settings.fio2_drawn_on(gas.at)
+    """The FiO2 of a gas: its own beats the setting, a difference asks. With the mask off the setting says nothing."""
+    off = support.drawn_in(gas.at) is not None or _after_the_end(gas.at, support)
+    setting = float("nan") if off else settings.fio2_drawn_on(gas.at)
     if not isnan(gas.gas_fio2):
         if abs(gas.gas_fio2 - setting) > policy.oxygen.fio2_same_within.value + 1e-9:
             values = {"gas_fio2": gas.gas_fio2, "setting": setting}

@@ -60,9 +60,11 @@ class SupportTime:
         return next((b for b in self.breaks if b.covers(at)), None)
 
     def drawn_in(self, at: Instant) -> Break | None:
-        """The break a gas was drawn in. One of the break's first minute was drawn before the mask came off, as a
-        gas of an anchor's own minute belongs before the anchor."""
-        return next((b for b in self.breaks if b.covers(at) and at // MINUTE > b.start // MINUTE), None)
+        """The break a gas was drawn in. A gas belongs before what changed in its minute: one of the break's first
+        minute was drawn before the mask came off, one of its last before the mask went on again."""
+        minute = at // MINUTE
+        return next((b for b in self.breaks if b.start // MINUTE < minute
+                     and (b.end is None or minute <= b.end // MINUTE)), None)  # fmt: skip
 
     def hours_on_mask(self, start: Instant, end: Instant) -> float:
         """Hours of support between two moments, breaks taken off."""
@@ -120,7 +122,7 @@ def _seen_to_begin(episode: Episode, first: Instant | None) -> bool:
     if any(gas.at < first for gas in episode.gases):
         return True
     written = [int(s.spots.t[0]) for c in by_group(Group.VITAL) if len((s := episode.number(c.key)).spots)]
-    written += [int(w.t[0]) for c in by_group(Group.EVENT) if len(w := episode.text(c.key))]
+    written += [int(w.t[0]) for g in (Group.VITAL, Group.EVENT) for c in by_group(g) if len(w := episode.text(c.key))]
     return any(t <= first - SETTLED for t in written)
 
 

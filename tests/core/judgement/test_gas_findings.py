@@ -76,6 +76,20 @@ def test_in_a_break_the_setting_says_nothing_about_oxygen():
     assert figure.off_support
 
 
+def test_a_gas_of_the_minute_in_which_the_mask_went_on_was_drawn_without_it():
+    (figure,) = gases(START + "02:00 break start\n02:30 break end\n02:30 ph 7.30 paco2 60 pao2 60 site arterial")
+    assert figure.pf_mmHg is None
+    assert figure.off_support
+
+
+def test_after_the_end_the_setting_says_nothing_about_oxygen():
+    log = START + "02:00 ph 7.30 paco2 60 pao2 60 site arterial\n02:00 stopped\n02:40 ph 7.36 paco2 50 pao2 60"
+    last_on, after = gases(log)
+    assert last_on.pf_mmHg == 150  # of the minute in which support ended: drawn before
+    assert after.pf_mmHg is None
+    assert after.reasons["pf_mmHg"].key == "undefined.fio2_unknown"
+
+
 def test_a_bicarbonate_that_cannot_belong_to_the_gas_is_named():
     (right,) = gases(START + "02:00 ph 7.31 paco2 50 hco3 25")
     (wrong,) = gases(START + "02:00 ph 7.31 paco2 50 hco3 31")

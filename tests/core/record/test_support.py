@@ -31,6 +31,8 @@ def test_support_that_ran_before_logging_has_no_recorded_start():
     [
         ("00:55 rr 30", False),
         ("00:50 rr 30", True),
+        ("00:50 acvpu alert", True),
+        ("00:55 acvpu alert", False),
         ("00:59 ph 7.25 paco2 70", True),
         ("00:40 mask on", True),
     ],
