@@ -20,9 +20,9 @@ from core.record.instant import HOUR, Instant
 from core.record.message import refuse
 
 if TYPE_CHECKING:
+    from app.episode.on_screen import EpisodeOnScreen
     from app.episode.panels import PanelSet
     from app.look.theme import Theme
-    from app.session.episode_shown import EpisodeOnScreen
     from storage.store import Store
 
 RECENT = 24 * HOUR
@@ -135,8 +135,8 @@ def _shown(
 ) -> EpisodeOnScreen:
     """What the window would show; `chosen` panels, or those kept for its indication, its kind, or shipped."""
     from app.episode.feed import shipped_titles
+    from app.episode.on_screen import EpisodeOnScreen
     from app.episode.panels import family_of, from_json, shipped
-    from app.session.episode_shown import EpisodeOnScreen
     from app.telling.support_course import course_of
 
     now = context.now()

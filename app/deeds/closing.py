@@ -9,10 +9,12 @@ from PySide6.QtCore import QUrl
 from PySide6.QtGui import QDesktopServices
 from PySide6.QtWidgets import QInputDialog
 
+from app.deeds.ward import WardDeeds
 from app.deeds.writing import WritingDeeds
 from app.keeping.left_behind import HANDOVERS, OwnFolder
 from app.operations.outcome import Outcome
 from app.session.failure import Failure
+from app.window.shell import Shell
 from app.words import sentence
 from core.record.message import Message
 
@@ -29,6 +31,10 @@ class ClosingDeeds(WritingDeeds):
     _printed = ""
     _copy_to: Path | None = None
     _opened_folder: OwnFolder | None = None
+
+    def __init__(self, window: Shell, ward: WardDeeds) -> None:
+        super().__init__(window)
+        self._ward = ward
 
     def do_close_handover(self) -> None:
         """Ask who gives and who takes; keep the sheet as it is printed now."""
@@ -51,7 +57,7 @@ class ClosingDeeds(WritingDeeds):
 
         self.window.prefer(paper=paper)
         request = handover_sheet.CloseRequest(
-            self.window.doers.ward.handover_request(), self.window.plain_reader, given_by, taken_by, paper
+            self._ward.handover_request(), self.window.plain_reader, given_by, taken_by, paper
         )
         self.model.ask(handover_sheet.close, request, done=self._closed, failed=self._not_closed)
 
@@ -61,7 +67,7 @@ class ClosingDeeds(WritingDeeds):
             self._dialog.deleteLater()
             self._dialog = None
         if self.window.pages is not None and self.window.pages.name == "handover":  # it tells what was closed
-            self.window.turner.fill("handover")
+            self.window.fill_page("handover")
         self.window.say(self.tr("The handover is closed. Ctrl+Shift+O lists and opens closed ones."))
 
     def _not_closed(self, failure: Failure) -> None:
@@ -77,7 +83,7 @@ class ClosingDeeds(WritingDeeds):
         from app.operations import handover
 
         self.window.say(self.tr("Gathering the shift..."))
-        self.model.ask(handover.prepare, self.window.doers.ward.handover_request(), done=self._preview,
+        self.model.ask(handover.prepare, self._ward.handover_request(), done=self._preview,
                        failed=self._not_closed, subject="handover preview")  # fmt: skip
 
     def _preview(self, outcome: Outcome[Handover]) -> None:
@@ -101,7 +107,7 @@ class ClosingDeeds(WritingDeeds):
         self.window.say(sentence(message, self.window.reader))
 
     def _note_print(self) -> None:
-        self.window.doers.ward.note_print(self._printed)
+        self._ward.note_print(self._printed)
 
     # closed ones
 

@@ -8,14 +8,14 @@ from PySide6.QtCore import QObject
 
 if TYPE_CHECKING:
     from app.session.model import SessionModel
-    from app.window.main import MainWindow
     from app.window.pages import Pages
+    from app.window.shell import Shell
 
 
 class Doer(QObject):
     """Belongs to a window and ends with it."""
 
-    def __init__(self, window: MainWindow) -> None:
+    def __init__(self, window: Shell) -> None:
         super().__init__(window)
         self.window = window
 

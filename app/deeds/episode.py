@@ -12,13 +12,13 @@ from app.operations.outcome import Outcome
 
 if TYPE_CHECKING:
     from app.chart.stack import PanelStack
-    from app.window.main import MainWindow
+    from app.window.shell import Shell
 
 
 class EpisodeDeeds(Doer):
     """Serves the menu Episode."""
 
-    def __init__(self, window: MainWindow) -> None:
+    def __init__(self, window: Shell) -> None:
         super().__init__(window)
         self._before: dict[str, list[PanelSet]] = {}
         """What was kept before, for each indication or kind, since the window was opened."""

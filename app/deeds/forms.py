@@ -6,8 +6,10 @@ from collections.abc import Callable
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
+from app.keeping.keeper import Keeping
 from app.operations.recording import Recorded
 from app.strip.log_strip import LogStrip
+from app.window.shell import Shell
 
 if TYPE_CHECKING:
     from app.forms.entry_form import EntryForm
@@ -22,6 +24,10 @@ class FormDeeds(Doer):
     """A form that was being filled in when a program ended."""
     form: PreviewedForm | None = None
     """The form that was opened last."""
+
+    def __init__(self, window: Shell, keeping: Keeping) -> None:
+        super().__init__(window)
+        self._keeping = keeping
 
     @property
     def strip(self) -> LogStrip:
@@ -74,16 +80,20 @@ class FormDeeds(Doer):
 
     def show_form(self, form: PreviewedForm, episode: str = "") -> None:
         """Open a form; what is typed into it outlives a crash."""
-        drafts = self.window.keeping.drafts
+        drafts = self._keeping.drafts
         if drafts is not None:
             drafts.forms.follow(form, episode)
         form.open()
         self.form = form
 
+    def keep_lost(self, lost: LostForm) -> None:
+        """Have a form at hand that a program which ended was filling in."""
+        self.lost = lost
+
     def open_lost(self) -> None:
         """Open the form that a program which ended was filling in, with what was typed."""
         lost, self.lost = self.lost, None
-        feed, drafts = self.window.feed, self.window.keeping.drafts
+        feed, drafts = self.window.feed, self._keeping.drafts
         if lost is None or feed is None or drafts is None:
             return
         if lost.episode and lost.episode not in feed.answers:

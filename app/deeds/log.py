@@ -4,17 +4,24 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
+from app.deeds.due import DueDeeds
 from app.deeds.forms import FormDeeds
+from app.keeping.keeper import Keeping
 from app.operations import flag as flag_operations
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
 from app.ward.lane_words import strongest_flag
 from app.ward.moves import label_told_apart
+from app.window.shell import Shell
 from core.judgement.shapes import FlagFigure
 
 
 class LogDeeds(FormDeeds):
     """Serves the menu Log."""
+
+    def __init__(self, window: Shell, keeping: Keeping, due: DueDeeds) -> None:
+        super().__init__(window, keeping)
+        self._due = due
 
     def do_focus_strip(self) -> None:
         """Go to the line."""
@@ -111,7 +118,7 @@ class LogDeeds(FormDeeds):
 
     def do_close_due(self) -> None:
         """A person's word on a due item."""
-        self.window.doers.due.close()
+        self._due.close()
 
     def do_correct(self) -> None:
         """Show what was logged for this patient, to be corrected, withdrawn or moved."""

@@ -5,24 +5,39 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QDialog, QFileDialog
 
-from app.deeds.doer import Doer
+from app.deeds.opening import OpeningDeeds, usual_folder
+from app.deeds.recovery_codes import RecoveryCodes
+from app.keeping.keeper import Keeping
 from app.operations.outcome import Outcome
+from app.window.shell import Shell
 
 if TYPE_CHECKING:
     from app.dialogs.first_lead import FirstLeadDialog
     from app.dialogs.passphrase import NewStoreDialog
 
 
-class MakingDeeds(Doer):
+class MakingDeeds(OpeningDeeds):
     """Makes stores; the menu File builds on it."""
+
+    take_in_wanted = Signal()
+    """The new store is there, and a file was to go into it."""
 
     _then_take_in = False
     _making: Path | None = None
     _new_store: NewStoreDialog | None = None
     lead_dialog: FirstLeadDialog | None = None
+
+    def __init__(self, window: Shell, keeping: Keeping, codes: RecoveryCodes) -> None:
+        super().__init__(window)
+        self._keeping, self._codes = keeping, codes
+
+    def make_then_take_in(self) -> None:
+        """A file is to be taken in, and there is no store yet."""
+        self._then_take_in = True
+        self.do_new_store()
 
     def do_new_store(self) -> None:
         """Ask where and with which passphrase, make an empty store, open it."""
@@ -59,7 +74,7 @@ class MakingDeeds(Doer):
             return
         path, passphrase = self._making, self._new_store.passphrase
         self._making, self._new_store = None, None
-        self.window.doers.file.open_path(path, passphrase=passphrase, create=True)
+        self.open_path(path, passphrase=passphrase, create=True)
         self.model.ask(operations.code_once, None, done=self._code_told)
 
     def _not_made(self) -> None:
@@ -68,7 +83,7 @@ class MakingDeeds(Doer):
     def _code_told(self, outcome: Outcome[str]) -> None:
         """The store is there: its recovery code is shown, this once."""
         if outcome.value:
-            self.window.doers.store.show_code(outcome.value).finished.connect(self._ask_lead)
+            self._codes.show(outcome.value).finished.connect(self._ask_lead)
         else:
             self._ask_lead()
 
@@ -82,8 +97,8 @@ class MakingDeeds(Doer):
             self.model, self.window.preferences.person, self.window.reader, self.window.theme, self.window
         )
         dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        dialog.signed_in.connect(self.window.keeping.take_proof)
-        dialog.named.connect(self.window.doers.file.become)
+        dialog.signed_in.connect(self._keeping.take_proof)
+        dialog.named.connect(self.become)
         dialog.finished.connect(self._lead_told)
         dialog.open()
 
@@ -91,13 +106,4 @@ class MakingDeeds(Doer):
         self.lead_dialog = None
         if self._then_take_in and self.window.model is not None:
             self._then_take_in = False
-            self.window.doers.file.do_take_in()
-
-
-def usual_folder() -> Path:
-    """Where stores lie unless another place is chosen."""
-    from platformdirs import user_data_path
-
-    folder = user_data_path("luffmark", appauthor=False)
-    folder.mkdir(parents=True, exist_ok=True)
-    return folder
+            self.take_in_wanted.emit()

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtWidgets import QFileDialog
 
-from app.deeds.doer import Doer
+from app.deeds.writer import Writer
 from app.operations.outcome import Outcome
 from app.session.failure import Failure, failure_of
 
@@ -20,7 +20,7 @@ if TYPE_CHECKING:
 KINDS = "Policy (*.toml)"
 
 
-class PolicyDeeds(Doer):
+class PolicyDeeds(Writer):
     """Shows one dialog of the policy at a time."""
 
     shown: PolicyDialog | None = None
@@ -109,4 +109,4 @@ class PolicyDeeds(Doer):
     def save(self, path: Path) -> None:
         """Write the policy in force, byte for byte as it is kept."""
         if self.shown is not None:
-            self.window.doers.review.write(path, self.shown.found.text.encode("utf-8"))
+            self.write(path, self.shown.found.text.encode("utf-8"))

@@ -5,8 +5,11 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from app.deeds.closing import ClosingDeeds
+from app.deeds.policy import PolicyDeeds
+from app.deeds.ward import WardDeeds
 from app.operations.outcome import Outcome
 from app.session.failure import Failure
+from app.window.shell import Shell
 from app.words import sentence
 from core.record.instant import MINUTE, Instant
 from core.record.message import RecordError
@@ -25,6 +28,10 @@ class ReviewDeeds(ClosingDeeds):
     _known: CameLater | None = None
     _known_at: Instant = 0
     _span: tuple[Instant, Instant] | None = None
+
+    def __init__(self, window: Shell, ward: WardDeeds, policy: PolicyDeeds) -> None:
+        super().__init__(window, ward)
+        self._policy = policy
 
     # as it was known
 
@@ -131,7 +138,7 @@ class ReviewDeeds(ClosingDeeds):
 
     def do_policy(self) -> None:
         """The policy in force."""
-        self.window.doers.policy.show()
+        self._policy.show()
 
     # shift figures
 

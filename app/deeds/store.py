@@ -9,13 +9,17 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QInputDialog
 
 from app.deeds.doer import Doer
+from app.deeds.file import FileDeeds
+from app.deeds.recovery_codes import RecoveryCodes
 from app.keeping.backups import folder_for
+from app.keeping.keeper import Keeping
 from app.keeping.lock_page import Way
 from app.keeping.preferences import MOST_LOCK_MINUTES
 from app.keeping.steps import Step
 from app.operations.outcome import Outcome
 from app.session.clock import REAL, Clock
 from app.session.failure import Failure
+from app.window.shell import Shell
 from app.words import sentence
 from core.record.message import Message
 from storage.backup_rotation import backups_in
@@ -23,7 +27,7 @@ from storage.backup_rotation import backups_in
 if TYPE_CHECKING:
     from app.dialogs.file_work import FileWork
     from app.dialogs.key_file import KeyFileDialog
-    from app.dialogs.passphrase import ChangePassphraseDialog, RecoveryCodeDialog
+    from app.dialogs.passphrase import ChangePassphraseDialog
     from app.dialogs.restore import RestoreDialog
     from app.dialogs.salvage import SalvageDialog
 
@@ -34,19 +38,22 @@ class StoreDeeds(Doer):
     """Serves the menu Store."""
 
     _changing: ChangePassphraseDialog | None = None
-    code_dialog: RecoveryCodeDialog | None = None
     _witness = ""
+
+    def __init__(self, window: Shell, keeping: Keeping, file: FileDeeds, codes: RecoveryCodes) -> None:
+        super().__init__(window)
+        self._keeping, self._file, self._codes = keeping, file, codes
 
     # the lock
 
     def do_lock(self) -> None:
         """Hide every screen."""
-        self.window.keeping.lock_now(self.model.session.person)
+        self._keeping.lock_now(self.model.session.person)
 
     def do_lock_after(self) -> None:
         """Ask after how many minutes; say where nothing would lock."""
         told = self.tr("Minutes without key or mouse")
-        if self.window.model is not None and self.window.keeping.way is Way.NOTHING:
+        if self.window.model is not None and self._keeping.way is Way.NOTHING:
             told = self.tr("This store has neither people nor a passphrase: it does not lock by itself.\nFor stores "
                            "that have: minutes without key or mouse")  # fmt: skip
         minutes, given = QInputDialog.getInt(
@@ -58,7 +65,7 @@ class StoreDeeds(Doer):
     def lock_after(self, minutes: int) -> None:
         """Lock after so many minutes from now on."""
         self.window.prefer(lock_minutes=minutes)
-        self.window.keeping.set_lock_minutes(minutes)
+        self._keeping.set_lock_minutes(minutes)
 
     # backups and damage
 
@@ -66,7 +73,7 @@ class StoreDeeds(Doer):
         """List the backups; take one, restore one, choose the folder."""
         from app.dialogs.backups import BackupsDialog
 
-        keeper = self.window.keeping.backups
+        keeper = self._keeping.backups
         if keeper is None:
             return
         path = self.model.session.store_path
@@ -79,16 +86,16 @@ class StoreDeeds(Doer):
     def set_backup_folder(self, folder: Path) -> None:
         """Keep backups there from now on."""
         self.window.prefer(backup_folder=str(folder))
-        if self.window.keeping.backups is not None:
-            self.window.keeping.backups.folder = folder_for(str(folder), self.model.session.store_path)
+        if self._keeping.backups is not None:
+            self._keeping.backups.folder = folder_for(str(folder), self.model.session.store_path)
 
     def set_witness(self, path: Path) -> None:
         """Add the printed head to this file after each backup."""
         from app.operations import backup
 
         self.window.prefer(witness_file=str(path))
-        if self.window.keeping.backups is not None:
-            self.window.keeping.backups.witness = str(path)
+        if self._keeping.backups is not None:
+            self._keeping.backups.witness = str(path)
         self.model.ask(backup.add_witness, str(path), failed=self.window.show_failure)
 
     def do_restore(self) -> None:
@@ -131,7 +138,7 @@ class StoreDeeds(Doer):
 
     def take_step(self, step: str) -> None:
         """A way out of some trouble was chosen."""
-        file = self.window.doers.file
+        file = self._file
         {
             Step.RESTORE: self.do_restore, Step.SALVAGE: self.do_salvage, Step.KEY_FILE: self.do_key_file,
             Step.AGAIN: file.open_again, Step.OPEN: file.do_open_store, Step.NEW: file.do_new_store,
@@ -145,7 +152,7 @@ class StoreDeeds(Doer):
 
     def _open_made(self, path: Path, passphrase: str | None) -> None:
         """What the person has just typed is not asked for again."""
-        self.window.doers.file.open_path(path, passphrase=passphrase)
+        self._file.open_path(path, passphrase=passphrase)
 
     def _backup_folder(self, store: Path) -> Path:
         return folder_for(self.window.preferences.backup_folder, store)
@@ -162,7 +169,7 @@ class StoreDeeds(Doer):
         if self.window.model is not None:
             return self.window.model.session.store_path
         recent = [Path(p) for p in self.window.preferences.recent_stores[:1]]
-        return self.window.doers.file.last_path or next(iter(recent), None)
+        return self._file.last_path or next(iter(recent), None)
 
     def _who(self) -> str:
         """Who works on files: nobody is known before a store is open, so the form asks."""
@@ -193,7 +200,7 @@ class StoreDeeds(Doer):
         rows = tuple((str(n), text) for n, text in enumerate(texts, start=1))
         told = self.tr("The store is not sound. Restore the newest backup, or save what can be read.")
         TableDialog(Table(self.tr("Findings"), heads, rows, told), self.window.theme, self.window).open()
-        self.window.keeping.tell_unsound(len(texts))
+        self._keeping.tell_unsound(len(texts))
 
     def do_archive(self) -> None:
         """List the ended episodes; archive or remove them."""
@@ -210,20 +217,6 @@ class StoreDeeds(Doer):
         PeopleDialog(self.model, self.window.reader, self.window.theme, self.window).open()
 
     # passphrase
-
-    def show_code(self, code: str, *, opens: bool = True) -> RecoveryCodeDialog:
-        """Show a recovery code, this once: one that opens the store, or only gives a PIN to who has none."""
-        from app.dialogs.passphrase import RecoveryCodeDialog
-
-        name = self.model.session.store_path.name
-        dialog = self.code_dialog = RecoveryCodeDialog(name, code, self.window.theme, self.window, opens=opens)
-        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        dialog.finished.connect(self._code_kept)
-        dialog.open()
-        return dialog
-
-    def _code_kept(self, _result: int) -> None:
-        self.code_dialog = None
 
     def do_second_passphrase(self) -> None:
         """Set, change or take away the second passphrase."""
@@ -258,7 +251,7 @@ class StoreDeeds(Doer):
             self._changing = None
         self.window.say(self.tr("The passphrase was changed. Backups made before keep the old one."))
         if outcome.value:
-            self.show_code(outcome.value)
+            self._codes.show(outcome.value)
 
     def _not_changed(self, failure: Failure) -> None:
         if self._changing is not None:

@@ -1,46 +1,22 @@
-"""Files for others: pictures, exports, and how a file is written and told of."""
+"""Files for others: pictures and exports."""
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtWidgets import QFileDialog
-
-from app.deeds.doer import Doer
+from app.deeds.writer import Writer
 from app.operations.outcome import Outcome
-from app.session.failure import failure_of
 
 if TYPE_CHECKING:
     from app.dialogs.export import Wanted
     from storage.export.deidentified import Statement
 
 
-class WritingDeeds(Doer):
-    """Writes files; the menu Review builds on it."""
+class WritingDeeds(Writer):
+    """Writes what others are to have; the menu Review builds on it."""
 
     _export_path = Path()
-
-    def ask_path(self, title: str, name: str, kinds: str) -> Path | None:
-        """Where a file is to go; None where the person left it."""
-        chosen, _ = QFileDialog.getSaveFileName(self.window, title, str(Path.home() / name), kinds)
-        return Path(chosen) if chosen else None
-
-    def write(self, path: Path, data: bytes) -> None:
-        """Write a file whole, and say so or say why not."""
-        from app.keeping.whole_file import write_whole
-
-        self.attempt(path, lambda: write_whole(path, data))
-
-    def attempt(self, path: Path, work: Callable[[], object]) -> None:
-        """Do something that writes `path`, and say so or say why not."""
-        try:
-            work()
-        except OSError as error:
-            self.window.show_failure(failure_of(error))
-            return
-        self.window.say(self.tr("{path} was written.").format(path=path))
 
     # pictures
 

@@ -6,10 +6,10 @@ from collections.abc import Mapping
 
 from PySide6.QtCore import QCoreApplication, QObject, Signal
 
+from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import PanelSet, family_of, from_json, shipped
 from app.operations import panel as panel_operations
 from app.operations.outcome import Outcome
-from app.session.episode_shown import EpisodeOnScreen
 from app.session.model import SessionModel
 from app.session.state import Changed, What
 from app.ward.feed import WardFeed

@@ -5,10 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app.chart.shapes import Band
+from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import Panel
 from app.episode.traces import shown_as
 from app.look.formats import fixed, trimmed
-from app.session.episode_shown import EpisodeOnScreen
 from app.telling.phrases import translate
 
 _BEYOND = 1e6

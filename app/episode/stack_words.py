@@ -9,12 +9,12 @@ import numpy as np
 
 from app.chart.shapes import Area, Bracket, PanelSpec, RibbonSpec, RibbonStep, Span, StackSpec, Tick
 from app.episode.limits import bands_of
+from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import Panel
 from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.look.formats import clock, quantity
 from app.look.theme import verdict_of
-from app.session.episode_shown import EpisodeOnScreen
 from app.telling.headline import lost_gain, response_state_word, sign_of, verdict_with_loss
 from app.telling.later_words import later_word
 from app.telling.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate

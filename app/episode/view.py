@@ -10,6 +10,7 @@ from PySide6.QtWidgets import QFrame, QHBoxLayout, QPushButton, QScrollArea, QVB
 
 from app.chart.shapes import Bracket, Tick
 from app.chart.stack import PanelStack
+from app.episode.on_screen import EpisodeOnScreen
 from app.episode.readout import Readout
 from app.episode.side import SideColumn
 from app.episode.stack_words import stack_of
@@ -17,7 +18,6 @@ from app.explain.findings import Explainer
 from app.look.elided_line import ElidedLine
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
-from app.session.episode_shown import EpisodeOnScreen
 from app.session.readers import reader_at
 from app.telling.headline import headline, state_now
 from app.telling.phrases import translate

@@ -16,14 +16,14 @@ from app.operations.intake import ReadRequest
 from app.session.model import SessionModel
 
 if TYPE_CHECKING:
-    from app.window.main import MainWindow
+    from app.window.shell import Shell
 
 
 class FilesInTurn(QObject):
     """Lives until the last file's dialog is closed. Leaving one file goes on to the next."""
 
     def __init__(
-        self, model: SessionModel, paths: Sequence[Path], episodes: tuple[str, ...], window: MainWindow
+        self, model: SessionModel, paths: Sequence[Path], episodes: tuple[str, ...], window: Shell
     ) -> None:
         super().__init__(window)
         self._model, self._window, self._episodes = model, window, episodes

@@ -23,7 +23,7 @@ from app.operations.outcome import Outcome
 from app.session.failure import Failure
 
 if TYPE_CHECKING:
-    from app.session.opened import Opened
+    from app.window.opened import Opened
 
 PREFIX = "strip "
 

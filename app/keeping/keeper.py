@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QObject, QTimer
+from PySide6.QtCore import QObject, QTimer, Signal
 
 from app.keeping.backups import BackupKeeper
 from app.keeping.chain_watch import ChainWatch
@@ -28,8 +28,8 @@ from core.record.message import Message
 
 if TYPE_CHECKING:
     from app.operations.backup import Rotated
-    from app.session.opened import Opened
-    from app.window.main import MainWindow
+    from app.window.opened import Opened
+    from app.window.shell import Shell
 
 BUSY = "store.busy_for_now"
 BACKUP, DISK, DRAFT, FORM, DAMAGED, LEFT = "backup", "disk", "draft", "form", "damaged", "left"
@@ -42,7 +42,14 @@ RETRY_MS = 5_000
 class Keeping(QObject):
     """Stands beside the window. `opened` and `closing` tell it which session it guards."""
 
-    def __init__(self, window: MainWindow) -> None:
+    step_wanted = Signal(str)
+    """A way out of some trouble was chosen."""
+    form_found = Signal(object)
+    """A `LostForm`: what a program that ended was filling in."""
+    form_wanted = Signal()
+    """The form that was found is to be opened again."""
+
+    def __init__(self, window: Shell) -> None:
         super().__init__(window)
         self._window = window
         self._model: SessionModel | None = None
@@ -62,6 +69,7 @@ class Keeping(QObject):
         self._retry.setInterval(RETRY_MS)
         self._retry.timeout.connect(self._try_again)
         self.locking = Locking(window)
+        self.locking.begins.connect(self._keep_drafts)
         self.lock, self.watch = self.locking.lock, self.locking.watch
 
     def set_theme(self, theme: Theme) -> None:
@@ -161,9 +169,11 @@ class Keeping(QObject):
 
     def lock_now(self, person: str = "", why: Why = Why.ASKED) -> None:
         """Hide every screen until somebody proves who they are; what is typed is kept first."""
-        if self.drafts is not None and not self.lock.is_locked:
-            self.drafts.keep()
         self.locking.lock_now(person, why)
+
+    def _keep_drafts(self) -> None:
+        if self.drafts is not None:
+            self.drafts.keep()
 
     def set_lock_minutes(self, minutes: int) -> None:
         """Lock after another time."""
@@ -259,10 +269,10 @@ class Keeping(QObject):
 
     def _take_way(self, key: str) -> None:
         if key == FORM_AGAIN:
-            self._window.doers.log.open_lost()
+            self.form_wanted.emit()
             self.notices.tell(FORM, "")
         else:
-            self._window.doers.store.take_step(key)
+            self.step_wanted.emit(key)
 
     def _recovered(self, label: str) -> None:
         told = self.tr(
@@ -271,7 +281,7 @@ class Keeping(QObject):
         self.notices.tell(DRAFT, told.format(label=label))
 
     def _form_found(self, lost: LostForm) -> None:
-        self._window.doers.log.lost = lost
+        self.form_found.emit(lost)
         told = self.tr("A form was being filled in when the program ended: {form}. Nothing of it is recorded.")
         again = WayOn(FORM_AGAIN, self.tr("Open the form again"))
         self.notices.tell(FORM, told.format(form=lost.title), ways=(again,))

@@ -18,7 +18,7 @@ from shiboken6 import isValid
 from app.keeping.lock_page import LockPage
 
 if TYPE_CHECKING:
-    from app.window.main import MainWindow
+    from app.window.shell import Shell
 
 LOOK_MS: Final = 2_000
 _SIGNS: Final = frozenset({
@@ -83,7 +83,7 @@ class IdleWatch(QObject):
 class Lock(QObject):
     """Hides what the window shows, and shows it again. Who may unlock is for others to say."""
 
-    def __init__(self, window: MainWindow) -> None:
+    def __init__(self, window: Shell) -> None:
         super().__init__(window)
         self._window = window
         self.page = LockPage(window.theme)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QObject
+from PySide6.QtCore import QObject, Signal
 
 from app.keeping.lock import IdleWatch, Lock
 from app.keeping.lock_page import Way, Why
@@ -16,13 +16,18 @@ if TYPE_CHECKING:
     from app.operations.outcome import Outcome
     from app.session.failure import Failure
     from app.session.model import SessionModel
-    from app.window.main import MainWindow
+    from app.window.shell import Shell
 
 
 class Locking(QObject):
     """Locks and unlocks a window. `opened` and `closing` tell it which session it guards."""
 
-    def __init__(self, window: MainWindow) -> None:
+    begins = Signal()
+    """Every screen is about to be hidden."""
+    code_made = Signal(str)
+    """The code by which people of a plain store get a PIN, to be shown this once."""
+
+    def __init__(self, window: Shell) -> None:
         super().__init__(window)
         self._window = window
         self._model: SessionModel | None = None
@@ -63,9 +68,10 @@ class Locking(QObject):
         """Hide every screen until somebody proves who they are."""
         if self._model is None or self.lock.is_locked:
             return
+        self.begins.emit()
         self.lock.lock()
         more = ""
-        if self._window.doers.review.forget_opened():
+        if self._window.forget_handovers():
             more = self.tr("A closed handover was opened in another program: close it there too.")
         self.lock.page.begin(self.way, person, why, minutes=self._window.preferences.lock_minutes,
                              has_code=True, more=more)  # fmt: skip
@@ -79,7 +85,7 @@ class Locking(QObject):
     def idle(self) -> None:
         """Nobody was there for too long."""
         if self._model is not None and self.way is not Way.NOTHING:
-            self._window.keeping.lock_now(self._model.session.person, Why.IDLE)
+            self.lock_now(self._model.session.person, Why.IDLE)
 
     def ask_for_proof(self) -> None:
         """Where people sign in, nobody logs who has not: the store was opened, or the first person was added."""
@@ -87,7 +93,7 @@ class Locking(QObject):
             return
         session = self._model.session
         if session.has_people and (not self._proven or session.person != self._proven):
-            self._window.keeping.lock_now(session.person, Why.BEGIN)
+            self.lock_now(session.person, Why.BEGIN)
             self._model.set_person("")
 
     def take_proof(self, initials: str) -> None:
@@ -103,7 +109,7 @@ class Locking(QObject):
     def _code_told(self, outcome: Outcome[str]) -> None:
         """A plain store has no recovery code of its own: its first ward lead is shown one, this once."""
         if outcome.value:
-            self._window.doers.store.show_code(outcome.value, opens=False)
+            self.code_made.emit(outcome.value)
 
     # by PIN
 

@@ -20,11 +20,11 @@ from PySide6.QtWidgets import (
 
 from app.chart.acid_base_map import AcidBaseMap
 from app.chart.shapes import MapGas, MapSpec
+from app.episode.on_screen import EpisodeOnScreen
 from app.look.copying import can_be_copied
 from app.look.formats import opened, unbroken
 from app.look.theme import Theme
 from app.map.words import class_words, map_spec, map_table, response_words, steps_of, titled_spec
-from app.session.episode_shown import EpisodeOnScreen
 from app.telling.phrases import gas_name, gas_words
 from app.telling.table import Table
 from app.words import Reader

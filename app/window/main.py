@@ -5,23 +5,20 @@ from __future__ import annotations
 from dataclasses import replace
 from pathlib import Path
 
-from PySide6.QtCore import Signal
+from PySide6.QtCore import QRect, Signal
 from PySide6.QtGui import QCloseEvent, QResizeEvent
-from PySide6.QtWidgets import QApplication, QMainWindow, QStackedWidget, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QApplication, QStackedWidget, QVBoxLayout, QWidget
 
 from app.deeds import Doers
 from app.episode.feed import EpisodeFeed
+from app.episode.on_screen import EpisodeOnScreen
 from app.keeping import preferences as kept
 from app.keeping.keeper import Keeping
 from app.keeping.preferences import Preferences
 from app.look.style_sheet import apply_theme
-from app.look.theme import THEMES, Theme
-from app.session.episode_shown import EpisodeOnScreen
 from app.session.failure import Failure
 from app.session.model import SessionModel
-from app.session.opened import Opened, is_on_a_screen, let_go
-from app.session.readers import reader_at, speak_through_qt
-from app.session.shift import Shift, shift_of
+from app.session.readers import speak_through_qt
 from app.session.state import Changed, What
 from app.strip.known_strip import KnownStrip
 from app.strip.log_strip import LogStrip
@@ -31,46 +28,47 @@ from app.ward.view import WardContent
 from app.window.action_table import DEEDS
 from app.window.actions import fill_menus, make_actions
 from app.window.first_page import FirstPage
+from app.window.opened import Opened, let_go
 from app.window.page_turner import PageTurner
 from app.window.pages import Pages
 from app.window.progress_line import ProgressLine
+from app.window.shell import Shell
 from app.window.top_bar import TopBar
 from app.window.top_line import TopLine
 from app.window.troubles import Troubles
-from app.words import Reader
 
 LEAST_SIZE = (1000, 640)
 USUAL_SIZE = (1280, 800)
 
 
-class MainWindow(QMainWindow):
+class MainWindow(Shell):
     """Shows the first page until `show_model` gives it a session."""
 
     shown_ward = Signal()
     """The ward's figures are on the screen."""
 
     def __init__(self, preferences: Preferences, keep_at: Path | None = None) -> None:
-        super().__init__()
-        self.preferences, self._keep_at = preferences, keep_at
-        self.opened: Opened | None = None
-        self.doers = Doers(self)
-        self.turner = PageTurner(self)
+        super().__init__(preferences)
+        self._keep_at = keep_at
+        self.keeping = Keeping(self)
+        self.doers = Doers(self, self.keeping)
         self.actions_by_key = make_actions(self, self.doers.of)
         fill_menus(self.menuBar(), self.actions_by_key)
         self.top = TopBar(self.theme)
         self.top.page_chosen.connect(self.show_page)
         self.top.person_wanted.connect(self.actions_by_key["sign_in"].trigger)
+        self.turner = PageTurner(self, self.top, self.doers)
         self.progress = ProgressLine(self)
         self.known = KnownStrip(self.theme)
+        self.troubles = Troubles(self, self.doers.file.ask_passphrase)
         self._connect_known()
-        self.keeping, self.troubles = Keeping(self), Troubles(self)
+        self._connect_keeping()
         self._middle = QWidget()
         self._column = QVBoxLayout(self._middle)
         self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(0)
         self._top_line = TopLine(self.top, self.menuBar(), self._column)
         self.cover = QStackedWidget()
-        """What the window shows, and the page that stands before it while it is locked."""
         self.cover.addWidget(self._middle)
         self.cover.addWidget(self.keeping.lock.page)
         self.setCentralWidget(self.cover)
@@ -79,63 +77,11 @@ class MainWindow(QMainWindow):
         self.setMinimumSize(*LEAST_SIZE)
         self._set_ticks()
         self.resize(*(preferences.window[2:] or USUAL_SIZE))
-        if preferences.window and is_on_a_screen(preferences.window):
+        if preferences.window and _is_on_a_screen(preferences.window):
             self.move(*preferences.window[:2])
-        self.first: FirstPage | None = None
         self.show_first_page()
 
-    # what is open
-
-    @property
-    def model(self) -> SessionModel | None:
-        """The session, or None before a store is open."""
-        return self.opened.model if self.opened is not None else None
-
-    @property
-    def feed(self) -> WardFeed | None:
-        """The ward's figures."""
-        return self.opened.feed if self.opened is not None else None
-
-    @property
-    def episode_feed(self) -> EpisodeFeed | None:
-        """What the episode view shows."""
-        return self.opened.episode_feed if self.opened is not None else None
-
-    @property
-    def pages(self) -> Pages | None:
-        """The pages."""
-        return self.opened.pages if self.opened is not None else None
-
-    @property
-    def strip(self) -> LogStrip | None:
-        """The log strip."""
-        return self.opened.strip if self.opened is not None else None
-
-    def _now_open(self) -> Opened:
-        if self.opened is None:
-            raise RuntimeError("no store is open")
-        return self.opened
-
     # look
-
-    @property
-    def theme(self) -> Theme:
-        """The look of the preferences."""
-        return THEMES[self.preferences.theme].scaled(self.preferences.text_scale)
-
-    @property
-    def reader(self) -> Reader:
-        """For whom sentences are written."""
-        if self.opened is None:
-            return Reader("UTC", self.preferences.gas_unit)
-        session = self.opened.model.session
-        return reader_at(session.zone, self.preferences.gas_unit, session.moment())
-
-    @property
-    def plain_reader(self) -> Reader:
-        """For whom files are written: every time with its date."""
-        zone = self.opened.model.session.zone if self.opened is not None else "UTC"
-        return Reader(zone, self.preferences.gas_unit)
 
     def prefer(self, **values: object) -> None:
         """Change preferences, keep them, and show what they change."""
@@ -251,9 +197,19 @@ class MainWindow(QMainWindow):
         self.known.live_wanted.connect(review.do_known_live)
         self.known.later_wanted.connect(review.do_came_later)
 
+    def _connect_keeping(self) -> None:
+        self.keeping.step_wanted.connect(self.doers.store.take_step)
+        self.keeping.form_found.connect(self.doers.log.keep_lost)
+        self.keeping.form_wanted.connect(self.doers.log.open_lost)
+        self.keeping.locking.code_made.connect(self.doers.codes.show_of_people)
+
     def show_page(self, name: str) -> None:
         """Show a page and give it the focus."""
         self.turner.show(name)
+
+    def fill_page(self, name: str) -> None:
+        """Give a page what it shows once more."""
+        self.turner.fill(name)
 
     # intents
 
@@ -267,11 +223,6 @@ class MainWindow(QMainWindow):
         self.select(key)
         self.show_page("episode")
 
-    def shift(self) -> Shift:
-        """The shift that is looked at."""
-        session = self._now_open().model.session
-        return shift_of(session.moment(), session.zone, self.preferences.shift_starts)
-
     # news
 
     def _model_changed(self, changed: Changed) -> None:
@@ -284,7 +235,7 @@ class MainWindow(QMainWindow):
 
     def _moment_changed(self) -> None:
         """Another moment is looked at: nothing can be logged into the past, and no screen may stay behind."""
-        o = self._now_open()
+        o = self.now_open()
         self.close_or_open_strip()
         self.doers.review.count_later()
         if o.pages.name in ("handover", "statistics"):
@@ -292,7 +243,7 @@ class MainWindow(QMainWindow):
 
     def close_or_open_strip(self) -> None:
         """The strip takes a line only where it can be recorded, and says why where not."""
-        o = self._now_open()
+        o = self.now_open()
         looking_back = self.tr("Looking back: nothing can be logged. Alt+Home goes back to now.")
         o.strip.set_closed(self.keeping.why_closed() if o.model.session.is_live else looking_back)
         self._set_ticks()
@@ -304,14 +255,14 @@ class MainWindow(QMainWindow):
         self._set_ticks()
 
     def _tell_session(self) -> None:
-        session = self._now_open().model.session
+        session = self.now_open().model.session
         self.top.show_session(session)
         self.known.show_session(session)
         self._place_top()
         self.setWindowTitle(self.keeping.title(session))
 
     def _ward_refreshed(self, content: WardContent) -> None:
-        o = self._now_open()
+        o = self.now_open()
         o.pages.ward.show_ward(content)
         chosen = o.model.session.selection
         gone = chosen is None or (chosen == o.strip.patient and chosen not in o.feed.answers)
@@ -327,7 +278,7 @@ class MainWindow(QMainWindow):
         self.shown_ward.emit()
 
     def _selection_changed(self) -> None:
-        o, unit = self._now_open(), self.preferences.gas_unit
+        o, unit = self.now_open(), self.preferences.gas_unit
         session = o.model.session
         answer = o.feed.answers.get(session.selection or "")
         if answer is None:
@@ -340,20 +291,19 @@ class MainWindow(QMainWindow):
         self._set_ticks()
 
     def _episode_refreshed(self, on: EpisodeOnScreen) -> None:
-        o = self._now_open()
+        o = self.now_open()
         if o.pages.name == "episode":
             o.pages.episode.show_episode(on, o.model.session.moment())
         elif o.pages.name == "map":
             o.pages.map.show_episode(on)
 
+    def forget_handovers(self) -> bool:
+        """Throw away the closed handovers that were opened in another program. Whether there were any."""
+        return self.doers.review.forget_opened()
+
     def show_failure(self, failure: Failure) -> None:
         """Say what did not succeed, where it belongs."""
         self.troubles.show(failure)
-
-    def say(self, text: str) -> None:
-        """Say something in the strip."""
-        if self.strip is not None:
-            self.strip.say(text)
 
     # the end
 
@@ -381,3 +331,9 @@ class MainWindow(QMainWindow):
         while self._column.count():
             let_go(self._column.takeAt(0))
         self.top.hide()
+
+
+def _is_on_a_screen(box: tuple[int, ...]) -> bool:
+    """Whether a kept window would be seen: a screen may have gone since."""
+    middle = QRect(*box).center()
+    return any(screen.availableGeometry().contains(middle) for screen in QApplication.screens())

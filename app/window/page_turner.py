@@ -2,13 +2,11 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
-
 from PySide6.QtCore import QObject
 
-if TYPE_CHECKING:
-    from app.session.opened import Opened
-    from app.window.main import MainWindow
+from app.deeds import Doers
+from app.window.shell import Shell
+from app.window.top_bar import TopBar
 
 FOCUS = {
     "ward": "lanes", "episode": "stack", "handover": "text", "compare": "list", "map": "map", "statistics": "table",
@@ -20,18 +18,13 @@ OF_ONE_EPISODE = ("episode", "map")
 class PageTurner(QObject):
     """Belongs to a window; acts only while a store is open."""
 
-    def __init__(self, window: MainWindow) -> None:
+    def __init__(self, window: Shell, top: TopBar, doers: Doers) -> None:
         super().__init__(window)
-        self._window = window
-
-    def _open(self) -> Opened:
-        if self._window.opened is None:
-            raise RuntimeError("no store is open")
-        return self._window.opened
+        self._window, self._top, self._doers = window, top, doers
 
     def show(self, name: str) -> None:
         """Show a page and give it the focus. One of a single episode needs an episode in hand."""
-        o, top = self._open(), self._window.top
+        o, top = self._window.now_open(), self._top
         if name in OF_ONE_EPISODE and o.model.session.selection is None:
             top.pages.choose(o.pages.name)
             return
@@ -46,7 +39,7 @@ class PageTurner(QObject):
 
     def fill(self, name: str) -> None:
         """Give a page what it shows; the ward has it already."""
-        o, doers = self._open(), self._window.doers
+        o, doers = self._window.now_open(), self._doers
         if name in OF_ONE_EPISODE:
             o.episode_feed.show_selection()
         elif name == "handover":
@@ -58,13 +51,13 @@ class PageTurner(QObject):
 
     def focus(self) -> None:
         """Hand the focus to the page that shows."""
-        pages = self._open().pages
+        pages = self._window.now_open().pages
         getattr(pages.page(pages.name), FOCUS[pages.name]).setFocus()
 
     def page_made(self, name: str) -> None:
         """A page has come to be: join its signals."""
-        pages, window = self._open().pages, self._window
-        doers, actions = window.doers, window.actions_by_key
+        window, pages = self._window, self._window.now_open().pages
+        doers, actions = self._doers, window.actions_by_key
         if name == "episode":
             pages.episode.back.connect(self.show_ward)
             pages.episode.explain_wanted.connect(doers.view.explain)

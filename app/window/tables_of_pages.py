@@ -2,17 +2,13 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
-
 from app.chart.shapes import LanesSpec
 from app.compare.courses import Comparison, words_of
 from app.look.formats import fixed, wall
 from app.telling.phrases import translate
 from app.telling.table import Table
 from app.ward.view import WardContent
-
-if TYPE_CHECKING:
-    from app.window.main import MainWindow
+from app.window.shell import Shell
 
 
 def table_of_lanes(spec: LanesSpec, content: WardContent) -> Table:
@@ -67,7 +63,7 @@ def table_of_comparison(comparison: Comparison) -> Table:
     return Table(translate("tables", "Episodes by hours since start"), heads, rows, "\n".join(words_of(comparison)))
 
 
-def table_of_page(window: MainWindow) -> Table | None:
+def table_of_page(window: Shell) -> Table | None:
     """The table of the page that the window shows; None where it is text already."""
     pages, feed = window.pages, window.feed
     if pages is None or feed is None:

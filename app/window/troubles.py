@@ -3,16 +3,14 @@ or the line under the log strip."""
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from collections.abc import Callable
 
 from PySide6.QtCore import QObject
 
 from app.keeping.steps import steps_out_of
 from app.session.failure import Failure
+from app.window.shell import Shell
 from app.words import sentence
-
-if TYPE_CHECKING:
-    from app.window.main import MainWindow
 
 ASK_PASSPHRASE = ("store.needs_passphrase", "key.wrong_passphrase")
 
@@ -20,9 +18,9 @@ ASK_PASSPHRASE = ("store.needs_passphrase", "key.wrong_passphrase")
 class Troubles(QObject):
     """Stands beside the window."""
 
-    def __init__(self, window: MainWindow) -> None:
+    def __init__(self, window: Shell, ask_passphrase: Callable[[str], None]) -> None:
         super().__init__(window)
-        self._window = window
+        self._window, self._ask_passphrase = window, ask_passphrase
 
     def show(self, failure: Failure) -> None:
         """Say what did not succeed. A store that wants its passphrase asks for it; one that cannot be opened leads
@@ -30,7 +28,7 @@ class Troubles(QObject):
         window = self._window
         text = sentence(failure.message, window.reader)
         if failure.message.key in ASK_PASSPHRASE:
-            window.doers.file.ask_passphrase(text if failure.message.key == "key.wrong_passphrase" else "")
+            self._ask_passphrase(text if failure.message.key == "key.wrong_passphrase" else "")
         elif window.opened is not None and not window.opened.feed.is_ready and not failure.is_ours:
             window.close_model()
             window.show_first_page()

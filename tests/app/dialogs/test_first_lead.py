@@ -44,7 +44,7 @@ def test_a_ward_lead_of_a_plain_store_is_signed_in_and_shown_a_code_for_its_peop
     for line in (lead.pin, lead.again):
         line.setText("2580")
     lead.go.click()
-    until(qtbot, lambda: window.doers.store.code_dialog is not None)
+    until(qtbot, lambda: window.doers.codes.dialog is not None)
     assert window.model.session.person == "AB"
     assert not window.keeping.lock.is_locked
     shown = window.findChild(RecoveryCodeDialog)

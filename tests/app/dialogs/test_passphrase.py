@@ -9,8 +9,8 @@ from PySide6.QtWidgets import QLineEdit
 
 from app.keeping.preferences import Preferences
 from app.window.main import MainWindow
-from storage.store_file import is_encrypted
 from storage.store import Store
+from storage.store_file import is_encrypted
 from tests.support.open_window import NOW, settled, until
 
 SECRET = "seven quiet boats at night"
@@ -52,10 +52,10 @@ def test_the_recovery_code_is_shown_once_and_must_be_kept(qtbot, window, tmp_pat
     for line in (dialog._new, dialog._again):
         qtbot.keyClicks(line, SECRET)
     dialog.go.click()
-    until(qtbot, lambda: ready(window) and window.doers.store.code_dialog is not None)
+    until(qtbot, lambda: ready(window) and window.doers.codes.dialog is not None)
     assert is_encrypted(path)
     assert "not encrypted" not in window.windowTitle()
-    shown = window.doers.store.code_dialog
+    shown = window.doers.codes.dialog
     code = shown.code.text()
     assert len(code.replace("-", "")) == 32
     assert not shown.go.isEnabled()
@@ -72,7 +72,7 @@ def test_the_recovery_code_is_shown_once_and_must_be_kept(qtbot, window, tmp_pat
     shown.kept.setChecked(True)
     shown.go.click()
     settled(qtbot, window)
-    assert window.doers.store.code_dialog is None
+    assert window.doers.codes.dialog is None
     window.close_model()
     Store.open(path, passphrase=code).close()
     with Store.open(path, passphrase=SECRET) as again:
@@ -107,10 +107,10 @@ def test_the_passphrase_is_changed_from_the_window(qtbot, window, tmp_path):
     until(qtbot, lambda: "passphrase is wrong" in dialog.wrong.text())
     dialog._old.setText(SECRET)
     dialog.go.click()
-    until(qtbot, lambda: window.doers.store.code_dialog is not None)
-    code = window.doers.store.code_dialog.code.text()
-    window.doers.store.code_dialog.kept.setChecked(True)
-    window.doers.store.code_dialog.accept()
+    until(qtbot, lambda: window.doers.codes.dialog is not None)
+    code = window.doers.codes.dialog.code.text()
+    window.doers.codes.dialog.kept.setChecked(True)
+    window.doers.codes.dialog.accept()
     window.close_model()
     for secret in ("nine other boats", code):
         Store.open(path, passphrase=secret).close()

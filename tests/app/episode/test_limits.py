@@ -6,8 +6,8 @@ import msgspec
 import pytest
 
 from app.episode.limits import bands_of
+from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import Panel
-from app.session.episode_shown import EpisodeOnScreen
 from core.judgement.policy import shipped_policy
 from tests.app.episode.test_stack_words import shown
 from tests.support.invented_ward import failing

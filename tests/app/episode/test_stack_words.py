@@ -2,10 +2,10 @@
 
 from app.chart.shapes import Drawn
 from app.episode.feed import shipped_titles
+from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import Panel, PanelSet, shipped
 from app.episode.stack_words import stack_of
 from app.look.theme import GasState, Verdict
-from app.session.episode_shown import EpisodeOnScreen
 from app.telling.support_course import course_of
 from core.judgement.policy import shipped_policy
 from tests.support.invented_ward import NOW, at, ended, failing, leaking, on_cpap, ward

@@ -4,8 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from PySide6.QtCore import QRect
-from PySide6.QtWidgets import QApplication, QLayoutItem
+from PySide6.QtWidgets import QLayoutItem
 
 from app.episode.feed import EpisodeFeed
 from app.keeping.notice_strip import NoticeStrip
@@ -46,9 +45,3 @@ def let_go(item: QLayoutItem | None) -> None:
     elif layout is not None:
         while layout.count():
             let_go(layout.takeAt(0))
-
-
-def is_on_a_screen(box: tuple[int, ...]) -> bool:
-    """Whether a kept window would be seen: a screen may have gone since."""
-    middle = QRect(*box).center()
-    return any(screen.availableGeometry().contains(middle) for screen in QApplication.screens())
