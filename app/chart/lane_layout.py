@@ -9,6 +9,7 @@ from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.look.theme import Theme
 
 _LEAST_CLOCK = 420  # below this many pixels at 100 % the two columns at the right are laid one over the other
+_LEAST_NAME = 200  # width at 100 % that names keep before the columns at the right are folded
 _CLOSE = 40  # least height of a lane at 100 %: twelve stand on a screen of 1280 x 800 at once
 _COMFORT = 54  # least height at which marks and words have their full size
 _FOLDED = 84  # least height with the two columns one over the other
@@ -103,13 +104,17 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
     quiet = QFontMetricsF(theme.font(theme.type.caption))
     titles = [text.horizontalAdvance(lane.title) for lane in spec.lanes]
     subtitles = [quiet.horizontalAdvance(lane.subtitle) for lane in spec.lanes]
-    left = min(max([*titles, *subtitles, px(96)]) + px(36), width * 0.24)
+    names = max([*titles, px(96)]) + px(36)
+    left = min(max([names, *(s + px(36) for s in subtitles)]), width * 0.24)
     words = QFontMetricsF(theme.font(theme.type.caption, bold=True))
     states = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.state_word, lane.verdict_word)]
     dues = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.due_word, lane.flag_word)]
-    state = min(max([*states, px(60)]) + px(44), width * 0.2)
-    due = min(max([*dues, px(60)]) + px(56), width * 0.24)
-    folded = width - left - state - due < px(_LEAST_CLOCK)
+    state = min(max([*states, px(60)]) + px(44), width * 0.215)
+    due = min(max([*dues, px(60)]) + px(60), width * 0.25)
+    spare = width - left - state - due - px(_LEAST_CLOCK)
+    if spare < 0:  # what stands under a name is cut before the columns are folded: folded lanes are twice as high
+        left = max(left + spare, min(left, max(names, px(_LEAST_NAME))))
+    folded = width - left - state - due < px(_LEAST_CLOCK) - 1
     if folded:
         longest = max([*states, *dues, px(60)])
         state = min(longest + px(56), width * 0.36)

@@ -10,7 +10,7 @@ from app.chart.time_ticks import ClockMark, date_word
 from app.look.theme import GasState, Theme
 
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
-_DIMMED = 0.45  # settings that were in force before the mask came off
+_DIMMED = 0.45  # ticks of settings that were in force before the mask came off; their words stand in brackets
 _FULL_SUPPORT = 20.0  # cmH2O of pressure support that fill the bar
 
 
@@ -218,7 +218,8 @@ class LanePainter:
             painter.setOpacity(painter.opacity() * _DIMMED)
         for p in reversed(placed):
             if p.item.kind is LaneKind.SETTING:
-                self._draw_setting(painter, p, taken)
+                word = f"({p.item.word})" if lane.off_mask and p.item.word else p.item.word
+                self._draw_setting(painter, p, word, taken)
         self._draw_support_words(painter, lane, taken)
         painter.restore()
 
@@ -259,21 +260,21 @@ class LanePainter:
         left = min(max((a + b - width) / 2, g.left), g.left + g.clock - width)
         self._words(painter, placed.item.word, left, rail + 2, QColor(c.ink), taken)
 
-    def _draw_setting(self, painter: QPainter, placed: Placed, taken: list[tuple[float, float]]) -> None:
+    def _draw_setting(self, painter: QPainter, placed: Placed, word: str, taken: list[tuple[float, float]]) -> None:
         g, theme = self.g, self.theme
         c = theme.colours
         foot = g.middle + g.thickest / 2 - theme.px(5)  # on the bar: under it a tick would cut its neighbour's word
         painter.fillRect(QRectF(round(placed.x), foot, 2, theme.px(7)), QColor(c.ink_quiet))
         painter.setFont(theme.font(theme.type.caption))
         left, top = placed.x + theme.px(5), g.words
-        self._words(painter, placed.item.word, self._before_now(placed, left), top, QColor(c.ink_quiet), taken)
+        self._words(painter, word, self._before_now(placed, word, left), top, QColor(c.ink_quiet), taken)
 
-    def _before_now(self, placed: Placed, left: float) -> float:
+    def _before_now(self, placed: Placed, word: str, left: float) -> float:
         """Words of a setting end before the now line: right of it they would tell of the time to come."""
         now, g, gap = self.spec.now, self.g, self.theme.px(6)
         if now is None or placed.item.at > now:
             return left
-        width = QFontMetricsF(self.theme.font(self.theme.type.caption)).horizontalAdvance(placed.item.word)
+        width = QFontMetricsF(self.theme.font(self.theme.type.caption)).horizontalAdvance(word)
         return min(left, g.x(now) - gap - width)
 
     def _words(
@@ -286,8 +287,11 @@ class LanePainter:
         clear = all(left + width + gap <= a or left >= b + gap for a, b in taken)
         if word and clear and left + width <= self.g.left + self.g.clock + 2:
             taken.append((left, left + width))
+            painter.save()
+            painter.setOpacity(1.0)  # marks may be faint, words are to be read
             painter.setPen(ink)
             painter.drawText(QRectF(left, top, width + 2, metrics.height()), _LEFT, word)
+            painter.restore()
 
     def _beside_now(self, left: float, width: float) -> float:
         """Words that the now line would cut move to its right, or to its left where that is the edge."""
@@ -311,8 +315,10 @@ class LanePainter:
         room = g.state - pad - theme.px(22)
         ink = self._ink(lane)
         if lane.state is not None:
-            gas_mark(painter, theme, lane.state, None, x + theme.px(6), y + line / 2, theme.px(11))
-        self._right_words(painter, lane.state_word, QRectF(x + theme.px(20), y, room, line), ink, bold=True)
+            gas_mark(painter, theme, lane.state, None, x + theme.px(6), y + line / 2, theme.px(11), lane.doubtful)
+        self._right_words(
+            painter, self._state_word(lane, room), QRectF(x + theme.px(20), y, room, line), ink, bold=True
+        )
         if lane.verdict is not None:
             box = QRectF(x + theme.px(1), y + line * 1.5 - theme.px(5), theme.px(10), theme.px(10))
             verdict_sign(painter, theme, lane.verdict, box)
@@ -320,11 +326,17 @@ class LanePainter:
         if g.folded:
             y += 2 * line
         else:
-            x, room = x + g.state, g.due - pad - theme.px(22)
+            x, room = x + g.state, g.due - pad - theme.px(28)
         if lane.tier is not None:
             pennant(painter, theme, lane.tier, x + theme.px(1), y + line - theme.px(3), theme.px(14), lane.closed)
         self._right_words(painter, lane.flag_word, QRectF(x + theme.px(20), y, room, line), ink, bold=True)
         self._draw_due(painter, lane, x, y + line, room, line)
+
+    def _state_word(self, lane: Lane, room: float) -> str:
+        """The state's words, or the shorter ones: a value cut in the middle would be another value."""
+        font = self.theme.font(self.theme.type.caption, bold=True)
+        fits = QFontMetricsF(font).horizontalAdvance(lane.state_word) <= room
+        return lane.state_word if fits or not lane.state_short else lane.state_short
 
     def _draw_due(self, painter: QPainter, lane: Lane, x: float, y: float, room: float, line: float) -> None:
         if not lane.due_word:

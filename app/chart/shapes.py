@@ -275,6 +275,8 @@ class Lane:
 
     tier, flag_word   the strongest open flag
     state_word, verdict_word  the state now and the headline at the right
+    state_short       the state where `state_word` has no room; "" where there is none shorter
+    doubtful          the gas of that state holds a doubtful value
     due_word, due_late  the next due item
     first_word        written where this lane is the one to see first
     """
@@ -286,6 +288,8 @@ class Lane:
     items: tuple[LaneItem, ...] = ()
     state: GasState | None = None
     state_word: str = ""
+    state_short: str = ""
+    doubtful: bool = False
     verdict: Verdict | None = None
     verdict_word: str = ""
     tier: Tier | None = None

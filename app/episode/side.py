@@ -19,12 +19,13 @@ from app.figures.groups import figure_groups
 from app.figures.leak import mask_rows
 from app.figures.rows import RowMaker
 from app.figures.values import input_name
-from app.look.formats import clock, hours, minutes, opened, since, trimmed
+from app.look.formats import hours, minutes, opened, since, trimmed
 from app.look.signs import Sign
 from app.look.theme import Theme, Tier, Verdict, tier_word, verdict_word
 from app.telling.certainty import certainty_words
 from app.telling.finding_names import due_name, lever_name, marker_name
 from app.telling.flag_spans import with_gaps
+from app.telling.gas_doubt import doubt_reason, doubt_word, rests_on_doubt, state_in_doubt
 from app.telling.headline import (
     Headline,
     beside_pf,
@@ -38,7 +39,7 @@ from app.telling.headline import (
 )
 from app.telling.lever_words import lever_reasons, lever_sentence, lever_standing
 from app.telling.phrases import gas_words, state_of, support_now, translate
-from app.telling.presumed import presumed_word
+from app.telling.presumed import presumed_word, silent_word
 from app.ward.lane_words import anchor_name, open_flags
 from app.ward.ordering import OPEN_DUE
 from app.words import Reader, sentence
@@ -168,7 +169,7 @@ class _Facts:
     # now
 
     def _now(self) -> Iterator[Fact]:
-        f, zone = self.f, self.reader.zone
+        f = self.f
         gas = next((g for g in reversed(f.gases) if g.site != "venous"), None)
         if gas is None:
             yield self._quiet(translate("side", "No gas yet"))
@@ -177,8 +178,9 @@ class _Facts:
             yield Fact(
                 self.theme,
                 self._state(gas),
-                (gas_words(gas, self.reader.gas_unit), f"{clock(gas.at, zone)}, {age}"),
-                sign=Sign(self.theme, state_of(gas.state)),
+                (gas_words(gas, self.reader.gas_unit), f"{self.reader.time(gas.at)}, {age}"),
+                sign=Sign(self.theme, state_of(gas.state), doubtful=gas.doubt or gas.disputed),
+                marks=self._doubt(gas),
                 large=True,
                 explanation=self.explainer.gas(gas),
             )
@@ -189,14 +191,20 @@ class _Facts:
                 yield self._since_start(response, told.since_start)
         yield Fact(self.theme, self._support(), tuple(self._mask_time()), explanation=self._hours())
 
+    @staticmethod
+    def _doubt(gas: GasFigure) -> tuple[str, ...]:
+        """Why the gas is doubtful; that it is stands before its state already where the state rests on it."""
+        told = doubt_reason(gas) if rests_on_doubt(gas) else doubt_word(gas)
+        return (f"{opened(told)}.",) if told else ()
+
     def _state(self, gas: GasFigure) -> str:
         pf = pf_word(self.f, gas, self.reader.gas_unit, self.reader.zone)
         state = beside_pf(pf, gas_state_word(self.f, gas))
         if gas.off_support:
             state = translate("side", "{state}, drawn off support").format(state=state)
         if pf and not ever_acidotic(self.f):  # oxygen alone is what failed
-            return translate("side", "Hypoxaemic: {state}").format(state=state)
-        return state
+            state = translate("side", "Hypoxaemic: {state}").format(state=state)
+        return state_in_doubt(gas, state)
 
     @staticmethod
     def _says_the_same(response: ResponseFigure, told: Headline) -> bool:
@@ -217,7 +225,7 @@ class _Facts:
     def _verdict(self, response: ResponseFigure, told: Headline) -> Fact:
         lines = [
             translate("side", "after {anchor} at {time}").format(
-                anchor=anchor_name(response), time=clock(response.anchor_at, self.reader.zone)
+                anchor=anchor_name(response), time=self.reader.time(response.anchor_at)
             )
         ]
         lines += [sentence(m, self.reader) for m in deciding(response.why)]
@@ -233,7 +241,7 @@ class _Facts:
     def _support(self) -> str:
         s = self.f.support
         if s.ended_at is not None:
-            return translate("side", "Support ended {time}").format(time=clock(s.ended_at, self.reader.zone))
+            return translate("side", "Support ended {time}").format(time=self.reader.time(s.ended_at))
         if off := off_mask_word(self.f, self.reader.zone):
             return off[:1].upper() + off[1:]
         return self._settings()
@@ -256,8 +264,8 @@ class _Facts:
             if s.hours_on_mask_last_24h is not None and s.hours_on_mask > s.hours_on_mask_last_24h + 0.05:
                 text += translate("side", ", {hours} in the last 24 h").format(hours=hours(s.hours_on_mask_last_24h))
             yield text
-        if presumed := presumed_word(s, self.reader.zone):
-            yield presumed
+        if silence := presumed_word(s, self.reader.zone) or silent_word(s, self.reader.zone):
+            yield silence
 
     # flags
 
@@ -313,9 +321,7 @@ class _Facts:
             elif d.state == "awaiting result":
                 title = translate("side", "{what}: awaiting result").format(what=name)
             else:
-                title = translate("side", "{what} by {time}").format(
-                    what=name, time=clock(d.due_until, self.reader.zone)
-                )
+                title = translate("side", "{what} by {time}").format(what=name, time=self.reader.time(d.due_until))
             yield Fact(
                 self.theme,
                 title,
@@ -371,6 +377,6 @@ class _Facts:
         if score.population == "outside":
             yield translate("side", "outside its population")
         if score.at is not None:
-            yield f"{clock(score.at, self.reader.zone)}, {since(score.at, self.f.as_of)}"
+            yield f"{self.reader.time(score.at)}, {since(score.at, self.f.as_of)}"
         said = (m for m in score.reasons.values() if not (score.missing and m.key == "score.inputs_missing"))
         yield from (sentence(m, self.reader) for m in said)

@@ -15,7 +15,7 @@ from app.episode.scales import scales_of
 from app.episode.traces import TraceMaker, shown_as
 from app.look.formats import clock, quantity
 from app.look.theme import verdict_of
-from app.telling.headline import lost_gain, response_state_word, sign_of, verdict_with_loss
+from app.telling.headline import in_doubt, lost_gain, response_state_word, sign_of, verdict_with_loss
 from app.telling.later_words import later_word
 from app.telling.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
 from app.ward.lane_words import anchor_name
@@ -111,12 +111,13 @@ def _brackets(on: EpisodeOnScreen) -> Iterator[Bracket]:
             continue  # its window never opened: a later change took its place
         end = r.window_to if r.superseded_at is None else min(r.window_to, r.superseded_at)
         verdict, lost = verdict_of(r.headline), lost_gain(r)
+        said = verdict_with_loss(verdict, lost=lost)
         yield Bracket(
             r.anchor_at,
             r.window_from,
             end,
             sign_of(verdict, lost=lost),
-            verdict_with_loss(verdict, lost=lost),
+            in_doubt(said) if r.in_doubt else said,
             None if r.state is None else state_of(r.state),
             "" if r.state is None else response_state_word(on.figures, r),
             still_open,

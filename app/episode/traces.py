@@ -29,6 +29,7 @@ _NAMES: Final = {
     "vte": "Tidal vol.",
     "mv": "Minute vent.",
 }
+_OF_BICARBONATE: Final = {"ph", "paco2", "hco3"}
 _FROM_GAS: Final = {"pf": "pf_mmHg", "hco3_calculated": "hco3_calculated_mmol_L", "sbe": "sbe_mmol_L"}
 LEAST_GAP: Final = 5 * MINUTE
 
@@ -144,12 +145,12 @@ class TraceMaker:
                 usual.v,
                 Drawn.SPOTS_JOINED,
                 ink,
-                self._looks(usual),
+                self._looks(usual, channel),
             )
         if len(other):
             name = translate("traces", "{name}, venous").format(name=trace_name(channel))
             yield self._trace(
-                channel, f"{channel}.venous", name, other.t, other.v, Drawn.SPOTS, ink, self._looks(other)
+                channel, f"{channel}.venous", name, other.t, other.v, Drawn.SPOTS, ink, self._looks(other, channel)
             )
 
     def _from_gases(self, channel: str, ink: int) -> Iterator[Trace]:
@@ -186,9 +187,12 @@ class TraceMaker:
             return t, v
         return np.append(t, end), np.append(v, v[-1])
 
-    def _looks(self, series: Series) -> np.ndarray:
+    def _looks(self, series: Series, channel: str = "") -> np.ndarray:
         looks = np.full(len(series), Look.FRESH, np.uint8)
         looks[series.doubt] = Look.DOUBTFUL
+        if channel in _OF_BICARBONATE:  # either may be the wrong one
+            odd = [g.at for g in self.figures.gases if g.implausible is not None]
+            looks[np.isin(series.t, np.array(odd, np.int64))] = Look.DOUBTFUL
         for i, origin in enumerate(series.origin):
             if origin >= 0:
                 standing = self.record.standing[int(origin)]

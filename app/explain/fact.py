@@ -199,6 +199,4 @@ def _label(text: str, role: str) -> QLabel:
 
 def heading(text: str) -> QLabel:
     """The heading of a group of facts."""
-    label = _label(text, "emphasis")
-    label.setWordWrap(False)
-    return label
+    return _label(text, "emphasis")

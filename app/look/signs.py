@@ -15,9 +15,18 @@ What = Verdict | Tier | GasState
 class Sign(QWidget):
     """One sign, as high as a line of text. Its word stands beside it, so it is silent to screen readers."""
 
-    def __init__(self, theme: Theme, what: What, *, verdict: Verdict | None = None, quiet: bool = False) -> None:
+    def __init__(
+        self,
+        theme: Theme,
+        what: What,
+        *,
+        verdict: Verdict | None = None,
+        quiet: bool = False,
+        doubtful: bool = False,
+    ) -> None:
         super().__init__()
         self._theme, self._what, self._verdict, self._quiet = theme, what, verdict, quiet
+        self._doubtful = doubtful
         self.setFixedSize(self.sizeHint())
         self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
 
@@ -35,5 +44,6 @@ class Sign(QWidget):
         elif isinstance(self._what, Tier):
             pennant(painter, self._theme, self._what, side * 0.14, side * 0.94, side * 0.86, self._quiet)
         else:
-            gas_mark(painter, self._theme, self._what, self._verdict, middle, middle, side * 0.62)
+            size = side * (0.54 if self._doubtful else 0.62)  # the ring of a doubt has its room
+            gas_mark(painter, self._theme, self._what, self._verdict, middle, middle, size, self._doubtful)
         painter.end()

@@ -22,9 +22,9 @@ from app.chart.acid_base_map import AcidBaseMap
 from app.chart.shapes import MapGas, MapSpec
 from app.episode.on_screen import EpisodeOnScreen
 from app.look.copying import can_be_copied
-from app.look.formats import opened, unbroken
+from app.look.formats import day, opened, unbroken
 from app.look.theme import Theme
-from app.map.words import class_words, map_spec, map_table, response_words, steps_of, titled_spec
+from app.map.words import class_words, doubt_sentence, map_spec, map_table, response_words, steps_of, titled_spec
 from app.telling.phrases import gas_name, gas_words
 from app.telling.table import Table
 from app.words import Reader
@@ -134,13 +134,26 @@ class MapView(QWidget):
         assert self._on is not None
         return Reader(self._on.zone, self._on.gas_unit)
 
+    def _short(self, column: int, row: tuple[str, ...]) -> str:
+        """A cell as far as there is room beside the map: another day is named, and a site that is unusual."""
+        if column != _TIME:
+            return row[column].rstrip(".")
+        date, _, time = row[_TIME].partition(" ")
+        site = row[_SITE].replace(" gas", "")
+        today = self._on is not None and date == day(self._on.course.until, self._on.zone)
+        return "\n".join(
+            part
+            for part in ("" if today else date, time, "" if site == "arterial" else site.replace("arterial (", "("))
+            if part
+        )
+
     def _fill(self, table: Table) -> None:
         self.table.blockSignals(True)
         self.table.setRowCount(len(table.rows))
         self.table.setHorizontalHeaderLabels([table.heads[c] for c in _SHOWN])
         for r, row in enumerate(table.rows):
             for n, c in enumerate(_SHOWN):
-                item = QTableWidgetItem(_short(c, row))
+                item = QTableWidgetItem(self._short(c, row))
                 item.setToolTip(row[c])
                 item.setData(Qt.ItemDataRole.UserRole, int(row[0]))
                 self.table.setItem(r, n, item)
@@ -187,6 +200,8 @@ class MapView(QWidget):
                  f'<p style="font-size:{theme.px(theme.type.emphasis)}px; font-weight:600; margin:2px 0">'
                  f"{escape(class_words(p, reader))}</p>",
                  f'<p style="margin:2px 0">{escape(unbroken(gas_words(p.gas, reader.gas_unit)))}</p>']  # fmt: skip
+        if doubt := doubt_sentence(p):
+            parts.append(f'<p style="margin:2px 0"><b>{escape(doubt)}</b></p>')
         parts += [f'<p style="{quiet}; margin:1px 0">{escape(unbroken(step))}</p>' for step in steps_of(p, reader)]
         if told := response_words(p, reader):
             parts.append(f'<p style="margin:4px 0 0 0"><b>{escape(unbroken(opened(told)))}</b></p>')
@@ -197,11 +212,3 @@ class MapView(QWidget):
             self.back.emit()
             return
         super().keyPressEvent(event)
-
-
-def _short(column: int, row: tuple[str, ...]) -> str:
-    """A cell as far as there is room beside the map: the clock without the date, and the site where it is unusual."""
-    if column == _TIME:
-        site = row[_SITE].replace(" gas", "")
-        return row[_TIME].partition(" ")[2] + ("" if site == "arterial" else f", {site}")
-    return row[column].rstrip(".")

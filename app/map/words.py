@@ -7,8 +7,9 @@ from dataclasses import replace
 from math import ceil, floor
 
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
-from app.look.formats import fixed, gas_pressure, signed, trimmed, wall
-from app.telling.headline import gas_state_word, judged_sign, since_start_words, verdict_with_loss
+from app.look.formats import fixed, gas_pressure, opened, signed, trimmed, wall
+from app.telling.gas_doubt import doubt_word, rests_on_doubt, state_in_doubt
+from app.telling.headline import gas_state_word, in_doubt, judged_sign, since_start_words, verdict_with_loss
 from app.telling.phrases import gas_name, gas_words, state_of, translate, verdict_or_none
 from app.telling.table import Table
 from app.ward.lane_words import anchor_name
@@ -79,7 +80,7 @@ def _map_gas(p: PathGas, reader: Reader, factor: float) -> MapGas:
 def gas_sentence(p: PathGas, reader: Reader) -> str:
     """A gas in one line: number, time, values, class, response."""
     parts = [f"{p.number}. {reader.time(p.gas.at)} {gas_name(p.gas)}: {gas_words(p.gas, reader.gas_unit)}",
-             class_words(p, reader).rstrip("."), response_words(p, reader)]  # fmt: skip
+             doubt_word(p.gas), class_words(p, reader).rstrip("."), response_words(p, reader)]  # fmt: skip
     return ". ".join(part for part in parts if part)
 
 
@@ -87,6 +88,12 @@ def class_words(p: PathGas, reader: Reader) -> str:
     """The class of a gas, or why it has none."""
     told = p.reading.classification or p.reading.classification_reason
     return sentence(told, reader) if told is not None else ""
+
+
+def doubt_sentence(p: PathGas) -> str:
+    """What makes the gas doubtful, as a sentence; "" where nothing does."""
+    doubt = doubt_word(p.gas)
+    return f"{opened(doubt)}." if doubt else ""
 
 
 def steps_of(p: PathGas, reader: Reader) -> tuple[str, ...]:
@@ -101,6 +108,7 @@ def response_words(p: PathGas, reader: Reader) -> str:
     verdict = verdict_or_none(p.judged.verdict)
     lost = p.judged.since_start.gain_lost
     word = verdict_with_loss(verdict, lost=lost) if verdict is not None else translate("map", "not judged")
+    word = in_doubt(word) if rests_on_doubt(p.gas) else word
     deltas = []
     if p.judged.delta_ph is not None:
         deltas.append(f"pH {signed(p.judged.delta_ph, 2)}")
@@ -144,5 +152,6 @@ def _row(p: PathGas, figures: EpisodeFigures, reader: Reader) -> tuple[str, ...]
         str(p.number), wall(g.at, reader.zone), gas_name(g), ph_as_reported(g) or "-",
         "-" if g.paco2_mmHg is None else gas_pressure(g.paco2_mmHg, reader.gas_unit),
         "-" if g.hco3_calculated_mmol_L is None else f"{fixed(g.hco3_calculated_mmol_L, 1)} mmol/L",
-        gas_state_word(figures, g), class_words(p, reader), response_words(p, reader),
+        state_in_doubt(g, gas_state_word(figures, g)),
+        state_in_doubt(g, class_words(p, reader)), response_words(p, reader),
     )  # fmt: skip

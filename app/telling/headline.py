@@ -11,6 +11,7 @@ from dataclasses import dataclass
 
 from app.look.formats import clock, fixed, gas_pressure
 from app.look.theme import GasState, Verdict, state_word, verdict_of, verdict_word
+from app.telling.gas_doubt import state_in_doubt
 from app.telling.phrases import state_of, translate
 from app.words.verdict_loss import LOST_SINCE, with_loss
 from core.judgement.now import headline_response
@@ -182,9 +183,12 @@ def beside_pf(pf: str, state: str) -> str:
 
 
 def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:
-    """The state in a few words, the oxygen first where it is what fails: P/F 107 mmHg; not acidotic."""
+    """The state in a few words, the oxygen first where it is what fails, a doubt before both: P/F 107 mmHg; not
+    acidotic."""
     state = beside_pf(pf_word(f, gas, gas_unit, zone), gas_state_word(f, gas))
-    return translate("headline", "{state}, last gas off support").format(state=state) if gas.off_support else state
+    if gas.off_support:
+        state = translate("headline", "{state}, last gas off support").format(state=state)
+    return state_in_doubt(gas, state)
 
 
 def off_mask_word(f: EpisodeFigures, zone: str) -> str:

@@ -8,10 +8,11 @@ from dataclasses import dataclass, replace
 from PySide6.QtCore import QCoreApplication
 
 from app.chart.shapes import Lane, LaneItem, LaneKind, SupportPiece
-from app.look.formats import clock, minutes, opened
+from app.look.formats import minutes, opened
 from app.look.theme import Tier, Verdict, tier_word
 from app.telling.certainty import starred
 from app.telling.finding_names import due_name, marker_name
+from app.telling.gas_doubt import doubt_word
 from app.telling.headline import (
     gas_state_word,
     headline,
@@ -39,8 +40,8 @@ from app.telling.support_course import Course
 from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due
+from app.ward.state_words import state_short, state_word
 from app.words import Reader, sentence
-from app.words.short_forms import ph_as_reported
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, JudgedGas, ResponseFigure
 from core.record.instant import MINUTE, Instant
 
@@ -92,7 +93,9 @@ class LaneWords:
             support=tuple(self._pieces(course)),
             items=tuple(sorted((*self._items(f, course), *self._moves(on_ward.moves)), key=lambda i: i.at)),
             state=state_of(gas.state) if gas is not None else None,
-            state_word=self._state_word(f, gas),
+            state_word=state_word(f, gas, self.reader),
+            state_short=state_short(f, gas, self.reader),
+            doubtful=gas is not None and (gas.doubt or gas.disputed),
             verdict=told.sign if told is not None else None,
             verdict_word=told.short if told is not None else "",
             tier=Tier(strongest.tier) if strongest is not None else None,
@@ -112,30 +115,18 @@ class LaneWords:
         s = f.support
         told = self._indication(f)
         if ambiguous and s.since is not None:
-            told = translate("ward", "{indication}, from {time}").format(
-                indication=told, time=clock(s.since, self.zone)
-            )
+            from_then = translate("ward", "{indication}, from {time}")
+            told = from_then.format(indication=told, time=self.reader.time(s.since))
         elif ambiguous:
             told = f"{told}, {f.episode}"
         if off_mask_word(f, self.zone):
             return translate("ward", "{indication}, mask off").format(indication=told)
-        if silent := silent_word(s, self.zone):
-            return f"{told}, {silent}"
+        if s.silent_since is not None:  # first, so that a narrow place does not cut it off
+            silence = minutes((self.as_of - s.silent_since) / MINUTE)
+            return translate("ward", "nothing logged for {length}; {about}").format(length=silence, about=told)
         if moved:
             return f"{told}, {moved}"
         return f"{told}, {s.mode}" if s.mode and not is_ended(f) else told
-
-    def _state_word(self, f: EpisodeFigures, gas: GasFigure | None) -> str:
-        """The state; a mask that is off comes first, since no setting acts then."""
-        if off := off_mask_word(f, self.zone):  # a state that is none of acidosis is left to its shape
-            acid = gas is not None and gas.state in ("severe", "acidotic")
-            return f"{off}; {gas_state_word(f, gas)}" if gas is not None and acid else off
-        if gas is None:
-            return translate("ward", "no gas logged yet")
-        told = state_now(f, gas, self.gas_unit, self.zone)
-        if gas.state in ("severe", "acidotic") and not gas.off_support and (ph := ph_as_reported(gas)):
-            return translate("ward", "{state}, pH {ph}").format(state=told, ph=ph)
-        return told
 
     def _indication(self, f: EpisodeFigures) -> str:
         indication = f.profile.get("indication")
@@ -150,11 +141,11 @@ class LaneWords:
         if due.state == "overdue":
             late = minutes((self.as_of - due.due_until) / MINUTE)
             return translate("ward", "{what} overdue {late}").format(what=name, late=late)
-        return translate("ward", "{what} by {time}").format(what=name, time=clock(due.due_until, self.zone))
+        return translate("ward", "{what} by {time}").format(what=name, time=self.reader.time(due.due_until))
 
     def _end_word(self, f: EpisodeFigures) -> str:
         assert f.support.ended_at is not None
-        at = clock(f.support.ended_at, self.zone)
+        at = self.reader.time(f.support.ended_at)
         reason = f.support.end_reason
         if reason:
             return translate("ward", "ended {time}, {reason}").format(time=at, reason=reason)
@@ -172,7 +163,7 @@ class LaneWords:
         gas = _latest_gas(f)
         if gas is not None:
             parts.append(
-                f"{clock(gas.at, self.zone)} {gas_words(gas, self.gas_unit)} "
+                f"{self.reader.time(gas.at)} {gas_words(gas, self.gas_unit)} "
                 f"({state_now(f, gas, self.gas_unit, self.zone)})"
             )
         parts.append(silent_word(s, self.zone))
@@ -235,13 +226,13 @@ class LaneWords:
     ) -> LaneItem:
         verdict = verdict_or_none(found[1].verdict) if found is not None else None
         parts = [
-            f"{clock(gas.at, self.zone)} {gas_name(gas)}: {gas_words(gas, self.gas_unit)}",
+            f"{self.reader.time(gas.at)} {gas_name(gas)}: {gas_words(gas, self.gas_unit)}",
             gas_state_word(f, gas),
         ]
         if found is not None and verdict is not None:
             parts.append(self._verdict_sentence(verdict, found[0], found[1]))
-        if gas.doubt:
-            parts.append(doubt_word(gas))
+        if doubt := doubt_word(gas):
+            parts.append(doubt)
         if gas.corrected:
             parts.append(translate("ward", "corrected"))
         return LaneItem(
@@ -261,32 +252,32 @@ class LaneWords:
             verdict=verdict_with_loss(verdict, lost=judged.since_start.gain_lost),
             minutes=minutes(judged.minutes),
             anchor=anchor_name(response),
-            time=clock(response.anchor_at, self.zone),
+            time=self.reader.time(response.anchor_at),
         ) + since_start_words(judged)
 
     def _change_sentence(self, n: int, course: Course) -> str:
         s = course.stretches[n]
-        at = clock(s.start, self.zone)
+        at = self.reader.time(s.start)
         if n == 0:
             return f"{at} {settings_line(s.settings)}"
         return f"{at} {change_sentence(s.changed, s.settings)}"
 
     def _break_sentence(self, start: Instant, end: Instant | None) -> str:
-        at = clock(start, self.zone)
+        at = self.reader.time(start)
         if end is None:
             length = minutes((self.as_of - start) / MINUTE)
             return translate("ward", "Off the mask since {time}, {length}").format(time=at, length=length)
         length = minutes((end - start) / MINUTE)
         return translate("ward", "Off the mask {time} to {end}, {length}").format(
-            time=at, end=clock(end, self.zone), length=length
+            time=at, end=self.reader.time(end), length=length
         )
 
     def _window_items(self, f: EpisodeFigures) -> Iterator[LaneItem]:
         for r in f.responses:
             if r.headline == "not yet known" and r.superseded_at is None and r.window_to > self.as_of:
                 text = translate("ward", "Response window {start} to {end} after {anchor}: no gas logged yet").format(
-                    start=clock(r.window_from, self.zone),
-                    end=clock(r.window_to, self.zone),
+                    start=self.reader.time(r.window_from),
+                    end=self.reader.time(r.window_to),
                     anchor=anchor_name(r),
                 )
                 yield LaneItem(
@@ -301,7 +292,7 @@ class LaneWords:
     def _flag_item(self, flag: FlagFigure) -> LaneItem:
         evidence = "; ".join(sentence(e, self.reader) for e in flag.evidence)
         name = starred(marker_name(flag.marker), flag.sure)
-        text = f"{clock(flag.since, self.zone)} {tier_word(Tier(flag.tier))}: {name}. {evidence}"
+        text = f"{self.reader.time(flag.since)} {tier_word(Tier(flag.tier))}: {name}. {evidence}"
         return LaneItem(
             LaneKind.FLAG,
             flag.since,
@@ -389,12 +380,3 @@ def _outside(start: Instant, end: Instant, course: Course) -> Iterator[tuple[Ins
             at = max(at, stop)
     if at < end:
         yield at, end
-
-
-def doubt_word(gas: GasFigure) -> str:
-    """What makes a gas doubtful, the worst first."""
-    if gas.implausible is not None:
-        return translate("ward", "doubtful: its values hardly belong together")
-    if gas.unconfirmed:
-        return translate("ward", "doubtful: a value that nobody confirmed")
-    return translate("ward", "doubtful: outside usual limits")

@@ -4,8 +4,9 @@ from dataclasses import replace
 
 import pytest
 from PySide6.QtCore import QPoint, Qt
+from PySide6.QtGui import QColor, QImage, QPainter
 
-from app.chart.lane_layout import geometry_of
+from app.chart.lane_layout import geometry_of, place_items
 from app.chart.lane_painter import LanePainter
 from app.chart.lanes import WardLanes
 from app.chart.shapes import LaneItem, LaneKind
@@ -217,3 +218,30 @@ def test_the_chosen_lane_is_brought_into_view_when_lanes_are_sorted_anew(ward, l
     ward.show_chosen()
     g, top = ward._geometry, ward.verticalScrollBar().value()
     assert top <= g.top(27) <= top + ward.viewport().height() - g.head
+
+
+def test_long_words_under_a_name_do_not_make_lanes_twice_as_high(lanes_spec):
+    """Eight lanes stand at 1280 x 800 though one of them has been silent for long and says so."""
+    lane = replace(lanes_spec.lanes[0], state_word="P/F 236 mmHg; acidotic, pH 7.31", due_word="x" * 60, items=())
+    spec = replace(lanes_spec, lanes=(replace(lane, subtitle="nothing logged for 15 h; " + "x" * 60), *[lane] * 7))
+    g = geometry_of(spec, LIGHT, 1248, 550)
+    assert not g.folded
+    assert g.head + g.top(8) <= 550 + g.gap
+
+
+def test_words_of_settings_keep_their_contrast_while_the_mask_is_off(qtbot, lanes_spec):
+    """They stand in brackets instead of being faint."""
+    lane = replace(lanes_spec.lanes[0], off_mask=True)
+    spec = replace(lanes_spec, lanes=(lane,))
+    g = geometry_of(spec, LIGHT, 1248, 90)
+    image = QImage(1248, round(g.lane), QImage.Format.Format_RGB32)
+    image.fill(0xFFFFFF)
+    drawn = LanePainter(spec, LIGHT, g, [])
+    placed = [p for p in place_items(lane, g, LIGHT) if p.item.kind is LaneKind.SETTING]
+    assert placed
+    painter = QPainter(image)
+    drawn._draw_settings(painter, lane, placed, [])
+    painter.end()
+    foot = image.copy(0, round(g.words), 1248, round(g.lane - g.words))
+    shades = [foot.pixelColor(x, y).lightness() for x in range(foot.width()) for y in range(foot.height())]
+    assert min(shades) <= QColor(LIGHT.colours.ink_quiet).lightness() + 25

@@ -8,9 +8,11 @@ from PySide6.QtWidgets import QLabel
 from app.episode.side import SideColumn
 from app.look.formats import plain
 from app.look.theme import LIGHT
+from app.session.readers import reader_at
 from app.words import Reader
 from core.judgement.policy import shipped_policy
 from core.judgement.shapes import EpisodeFigures
+from core.record.instant import HOUR
 from core.record.message import Message
 from tests.support.sample_ward import sample_ward
 
@@ -28,7 +30,7 @@ def told(qtbot):
     def texts(figures: EpisodeFigures) -> list[list[str]]:
         column = SideColumn(LIGHT)
         qtbot.addWidget(column)
-        column.show_figures(figures, shipped_policy(), READER)
+        column.show_figures(figures, shipped_policy(), reader_at("Europe/London", "mmHg", figures.as_of))
         card = column.facts()[0].parentWidget()
         facts = [f for f in column.facts() if f.parentWidget() is card]
         return [[plain(label.text()) for label in f.findChildren(QLabel)] for f in facts]
@@ -79,3 +81,40 @@ def test_off_the_mask_comes_before_the_settings_it_had(told):
     last = told(off)[-1]
     assert last[0] == "Mask off since 05:30"
     assert any(line.startswith("before it came off: BPAP-ST") for line in last)
+
+
+def test_a_doubtful_gas_says_so_with_its_reason(told):
+    f = bed("Bed 4")
+    odd = replace(f.gases[-1], doubt=True, implausible=Message("gas.implausible", {}))
+    first = told(replace(f, gases=(*f.gases[:-1], odd)))[0]
+    assert first[:2] == ["doubtful: severe", "Its values hardly belong together."]
+    confirmed = told(replace(f, gases=(*f.gases[:-1], replace(f.gases[-1], doubt=True))))[0]
+    assert confirmed[:2] == ["severe", "Doubtful: outside usual limits, confirmed."]
+
+
+def test_a_gas_of_another_day_carries_its_date(told):
+    f = bed("Bed 4")
+    assert not any("2026" in line for line in told(f)[0])
+    f = replace(f, as_of=f.as_of + 20 * HOUR)
+    assert any(line.startswith("28-Mar-2026 04:18, ") for line in told(f)[0])
+
+
+def test_a_silence_is_said_where_no_hours_are_known_either(told):
+    f = bed("Bed 4")
+    silent = replace(f.support, silent_since=f.as_of - 13 * HOUR, hours_presumed=None, hours_on_mask=None)
+    assert any(
+        line.startswith("nothing logged since 27-Mar-2026 16:30") for line in told(replace(f, support=silent))[-1]
+    )
+
+
+def test_no_heading_of_the_column_is_cut(qtbot):
+    column = SideColumn(LIGHT)
+    qtbot.addWidget(column)
+    column.show_figures(bed("Bed 4"), shipped_policy(), READER)
+    column.resize(column.width(), 600)
+    column.show()
+    heads = [x for x in column.findChildren(QLabel) if x.property("role") == "emphasis"]
+    assert any(x.text().startswith("What could act") for x in heads)
+    for label in heads:
+        right = label.mapTo(column.viewport(), label.rect().topRight()).x()
+        assert right < column.viewport().width(), label.text()

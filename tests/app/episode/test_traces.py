@@ -12,6 +12,7 @@ from core.record.entries import Action, recorded
 from core.record.episode import build_episode
 from core.record.instant import MINUTE
 from core.record.knowledge import standing
+from core.record.message import Message
 from tests.support.invented_ward import NOW, at, failing, leaking
 
 
@@ -101,3 +102,12 @@ def test_every_drawable_channel_has_a_unit():
     from app.episode.panels import drawable
 
     assert all(shown_as(c, "kPa").unit for c in drawable())
+
+
+def test_values_that_hardly_belong_together_are_both_marked():
+    bed = failing()
+    odd = replace(bed.figures.gases[-1], doubt=True, implausible=Message("gas.implausible", {}))
+    bed = replace(bed, figures=replace(bed.figures, gases=(*bed.figures.gases[:-1], odd)))
+    for channel in ("ph", "paco2"):
+        (trace,) = maker(bed).traces(channel, 0)
+        assert [t for t, look in zip(trace.t, trace.looks, strict=True) if look == Look.DOUBTFUL] == [odd.at]

@@ -3,7 +3,16 @@
 import pytest
 
 from app.look.theme import GasState
-from app.map.words import gas_sentence, map_spec, map_table, response_words, steps_of, summary, titled_spec
+from app.map.words import (
+    doubt_sentence,
+    gas_sentence,
+    map_spec,
+    map_table,
+    response_words,
+    steps_of,
+    summary,
+    titled_spec,
+)
 from app.words import Reader
 from core.figures.episode_figures import episode_figures
 from core.figures.gas_path import gas_path
@@ -80,3 +89,13 @@ def test_an_extreme_gas_widens_the_map():
     spec = map_spec(wild, READER)
     assert spec.paco2_scale.high >= 140
     assert spec.ph_scale.low <= 6.90
+
+
+def test_a_gas_whose_values_hardly_belong_together_says_so_on_the_map():
+    odd = episode_figures(episode(LOG + "00:40 ph 7.45 paco2 120 site arterial"), moment("01:00"), shipped_policy())
+    *others, last = gas_path(odd).gases
+    assert last.gas.implausible is not None
+    assert "doubtful: its values hardly belong together" in gas_sentence(last, READER)
+    assert doubt_sentence(last) == "Doubtful: its values hardly belong together."
+    assert not any(doubt_sentence(p) for p in others)
+    assert map_table(odd, READER).rows[-1][7].startswith("doubtful: ")

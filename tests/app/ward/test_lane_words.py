@@ -6,11 +6,12 @@ import pytest
 
 from app.chart.shapes import LaneKind
 from app.look.theme import GasState, Tier, Verdict
+from app.session.readers import reader_at
 from app.telling.support_course import course_of
 from app.ward.flag_column import short_flags
 from app.ward.lane_words import LaneWords, OnWard, anchor_name
-from app.words import Reader
 from core.judgement.shapes import NowFigure, ResponseFigure, Step
+from core.record.instant import HOUR
 from tests.support.invented_ward import (
     NOW,
     ZONE,
@@ -25,7 +26,7 @@ from tests.support.invented_ward import (
 )
 from tests.support.sample_ward import sample_ward
 
-WORDS = LaneWords(Reader(ZONE, "mmHg"), NOW)
+WORDS = LaneWords(reader_at(ZONE, "mmHg", NOW), NOW)
 
 
 def lane_of(bed, **values):
@@ -77,7 +78,7 @@ def test_weaker_flags_of_a_group_stay_under_the_strongest():
 
 
 def test_in_kilopascal():
-    words = LaneWords(Reader(ZONE, "kPa"), NOW)
+    words = LaneWords(reader_at(ZONE, "kPa", NOW), NOW)
     bed = failing()
     lane = words.lane(OnWard(bed.figures, course_of(bed.record, NOW)), first=False)
     assert "PaCO2 9.9 kPa" in items(lane, LaneKind.GAS)[-1].sentence
@@ -175,3 +176,37 @@ def test_a_change_is_named_from_what_to_what_as_it_stands_in_a_sentence():
     told = anchor_name(ResponseFigure(2, "change", 1, steps=steps))
     assert told == "IPAP 18 to 24 cmH2O, FiO2 35 %, backup rate 14 to 16/min"
     assert anchor_name(ResponseFigure(2, "change", 1)) == "a change of settings"
+
+
+def test_a_doubtful_gas_is_told_and_ringed_at_the_end_of_its_lane():
+    bed = failing()
+    odd = replace(bed.figures.gases[-1], doubt=True, unconfirmed=True)
+    doubtful = replace(bed, figures=replace(bed.figures, gases=(*bed.figures.gases[:-1], odd)))
+    lane, sure = lane_of(doubtful), lane_of(bed)
+    assert lane.doubtful
+    assert lane.state_word == f"doubtful: {sure.state_word}"
+    assert not sure.doubtful
+    assert "(doubtful: " in lane.sentence
+
+
+def test_a_state_too_long_for_its_place_keeps_oxygen_and_ph_whole():
+    bed = failing()
+    now = replace(bed.figures.now, oxygen_failure=True, pf_mmHg=236.0, pf_at=bed.figures.gases[-1].at)
+    lane = lane_of(replace(bed, figures=replace(bed.figures, now=now)))
+    gas = bed.figures.gases[-1]
+    assert lane.state_word == f"P/F 236 mmHg; severe, pH {gas.ph_text}"
+    assert lane.state_short == f"P/F 236 mmHg, pH {gas.ph_text}"
+
+
+def test_a_silence_stands_first_under_the_name():
+    bed = failing()
+    silent = replace(bed.figures.support, silent_since=NOW - 16 * HOUR)
+    lane = lane_of(replace(bed, figures=replace(bed.figures, support=silent)))
+    assert lane.subtitle == "nothing logged for 16 h; COPD"
+
+
+def test_a_moment_of_another_day_carries_its_date():
+    bed = failing()
+    words = LaneWords(reader_at(ZONE, "mmHg", NOW + 24 * HOUR), NOW + 24 * HOUR)
+    lane = words.lane(OnWard(bed.figures, course_of(bed.record, NOW)), first=False)
+    assert all("-Mar-2026 " in i.sentence for i in items(lane, LaneKind.GAS))
