@@ -135,12 +135,20 @@ def _about_files(intake: argparse.ArgumentParser) -> None:
     intake.add_argument("--leak", default="", metavar="WHAT", help="what leak means: unintentional, total, not known")
     intake.add_argument("--clock-shift", type=float, default=0.0, metavar="S",
                         help="seconds to add to every time of a device whose clock is off")  # fmt: skip
-    intake.add_argument("--sheet", default="", help="the sheet of a spreadsheet; the first when left out")
-    intake.add_argument("--encoding", default="", help="how a table's text is encoded; found when left out")
-    intake.add_argument("--header-line", type=int, default=0, metavar="N",
-                        help="the line of a table's header; found when left out")  # fmt: skip
+    _about_writing(intake)
     intake.add_argument("--leave-out-refused", action="store_true",
                         help="take the file without its refused rows; which ones is recorded")  # fmt: skip
+
+
+def _about_writing(command: argparse.ArgumentParser) -> None:
+    """How a table is written; a mapping keeps what is said here."""
+    command.add_argument("--sheet", default="", help="the sheet of a spreadsheet; the first when left out")
+    command.add_argument("--encoding", default="", help="how a table's text is encoded; found when left out")
+    command.add_argument("--delimiter", default="", metavar="C",
+                         help="what a table's columns are apart by: one character, or comma, semicolon, tab, bar, "
+                         "space, colon; found when left out")  # fmt: skip
+    command.add_argument("--header-line", type=int, default=0, metavar="N",
+                         help="the line of a table's header; found when left out")  # fmt: skip
 
 
 def pair(text: str) -> tuple[str, str]:
@@ -217,6 +225,7 @@ def _keeping(command: Command) -> None:
     mapping.add_argument("what", choices=("list", "show", "propose", "put", "forget"))
     mapping.add_argument("subject", nargs="?", help="a file (propose, put) or a name (show, forget)")
     mapping.add_argument("--name", default="", help="the name to keep it by")
+    _about_writing(mapping)
     archive = command("archive", "ended episodes: list, copy into an archive, remove after the retention time")
     archive.add_argument("what", choices=("list", "write", "remove", "retention"))
     archive.add_argument(

@@ -19,6 +19,7 @@ from core.record.samples import DeviceSamples, Flags, mask_samples, shift_sample
 from storage import schema as s
 from storage.chunks import decode
 from storage.errors import store_error
+from storage.rules import WITHDRAWN_WHOLE
 
 _IN_LIMIT = 500
 _e, _b, _c = s.entry.c, s.batch.c, s.chunk.c
@@ -64,11 +65,6 @@ def entries_where(connection: sa.Connection, condition: sa.ColumnElement[bool]) 
     return [_entry(row) for row in connection.execute(_SELECT_ENTRIES.where(condition).order_by(_e.seq))]
 
 
-def superseded(connection: sa.Connection, ids: Iterable[str]) -> frozenset[str]:
-    """Those of `ids` that a later entry replaces."""
-    return frozenset(e.replaces for e in _where_in(connection, _e.replaces, ids, 2**62))
-
-
 def texts_of(connection: sa.Connection, channel: str) -> tuple[tuple[str, str], ...]:
     """The texts of a channel that stand in any episode, as (episode, text), in order of recording."""
     rows = connection.execute(_SELECT_ENTRIES.where(_e.channel == channel).order_by(_e.seq))
@@ -104,27 +100,35 @@ def episode_samples(
     """The device samples of an episode as known at `head`, one block per channel.
 
     A later block wins where it overlaps an earlier one; mask and shift entries (`spans`, in order) act on what
-    was recorded before them.
+    was recorded before them. A file that was withdrawn whole is passed over as if it had never been laid there.
     """
     query = sa.select(_c.seq, _c.channel, s.source.c.id, _c.t0, _c.blob, _c.sha).join_from(
         s.chunk, s.source, _c.source_seq == s.source.c.seq
     )
-    query = query.where((_c.episode_id == episode) & (_c.seq <= head))
+    not_laid_anew = s.source.c.kind != "withdrawal"  # so did an older program what is now seen by passing over
+    query = query.where((_c.episode_id == episode) & (_c.seq <= head) & not_laid_anew)
     if channel is not None:
         query = query.where(_c.channel == channel)
     waiting = list(spans)
+    gone = {(span.channel, span.source) for span in waiting if _withdraws_whole(span)}
     if between is not None and not any(span.action is Action.SHIFT for span in waiting):
         query = query.where((_c.t1 >= between[0]) & (_c.t0 <= between[1]))
     channels: dict[str, Pieces] = {}
     for seq, key, source, t0, blob, sha in connection.execute(query.order_by(_c.seq)):
         while waiting and waiting[0].seq < seq:
             _apply(waiting.pop(0), channels)
+        if (key, source) in gone:
+            continue
         t, v, decimals = decode(blob, t0, sha)
         channels.setdefault(key, Pieces()).add(DeviceSamples(episode, key, source, t, v, decimals))
     for span in waiting:
         _apply(span, channels)
     made = (pieces.joined() for pieces in channels.values())
     return tuple(block for block in made if block is not None)
+
+
+def _withdraws_whole(span: Entry) -> bool:
+    return span.action is Action.MASK and bool(span.source) and span.reason == WITHDRAWN_WHOLE
 
 
 def _apply(span: Entry, channels: dict[str, Pieces]) -> None:

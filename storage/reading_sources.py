@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import json
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import sqlalchemy as sa
 
@@ -87,6 +87,13 @@ def origins(connection: sa.Connection, episode: str) -> dict[str, str]:
     return {str(row[0]): str(row[1]) for row in connection.execute(query)}
 
 
+def source_ids(connection: sa.Connection, episode: str) -> dict[str, str]:
+    """The sources that an episode's entries came from, by the entry's id; typed entries are left out."""
+    query = sa.select(_e.id, _b.source_id).join_from(s.entry, s.batch, _e.batch_seq == _b.seq)
+    rows = connection.execute(query.where((_e.episode_id == episode) & (_b.source_id != "")))
+    return {str(row[0]): str(row[1]) for row in rows}
+
+
 def source_spans(connection: sa.Connection, source_id: str) -> tuple[SampleSpan, ...]:
     """Where a source's samples lie, one span per episode and channel."""
     query = sa.select(_c.episode_id, _c.channel, sa.func.min(_c.t0), sa.func.max(_c.t1)).join_from(
@@ -94,11 +101,3 @@ def source_spans(connection: sa.Connection, source_id: str) -> tuple[SampleSpan,
     )
     query = query.where(_s.id == source_id).group_by(_c.episode_id, _c.channel)
     return tuple(SampleSpan(r[0], r[1], int(r[2]), int(r[3])) for r in connection.execute(query))
-
-
-def later_spans(connection: sa.Connection, span: SampleSpan, seq: int) -> tuple[SampleSpan, ...]:
-    """Where samples of the same episode and channel were laid after a sequence."""
-    query = sa.select(_c.t0, _c.t1).where(
-        (_c.episode_id == span.episode) & (_c.channel == span.channel) & (_c.seq > seq)
-    )
-    return tuple(replace(span, start=int(r[0]), end=int(r[1])) for r in connection.execute(query))

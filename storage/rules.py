@@ -17,6 +17,8 @@ EARLIEST = -2_208_988_800_000_000  # 1900-01-01
 LATEST = 7_258_118_400_000_000  # 2200-01-01
 MAX_TEXT = 8_000
 """Letters in one text: a row of such texts still fits a line of the log file."""
+WITHDRAWN_WHOLE = "withdrawn with its whole file"
+"""The reason on each entry of a file that was withdrawn whole."""
 DEVICE_GROUPS = (Group.DEVICE, Group.VITAL)
 
 

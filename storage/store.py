@@ -303,11 +303,6 @@ class Store(StoreCare):
         with self._opened.database.read() as connection:
             return reading.texts_of(connection, channel)
 
-    def superseded(self, ids: Sequence[str]) -> frozenset[str]:
-        """Those of `ids` that a later entry replaces."""
-        with self._opened.database.read() as connection:
-            return reading.superseded(connection, ids)
-
     def sources(self) -> tuple[taken.TakenSource, ...]:
         """Every file or stream that was taken in, with what it brought, in order of taking."""
         with self._opened.database.read() as connection:
@@ -323,15 +318,15 @@ class Store(StoreCare):
         with self._opened.database.read() as connection:
             return taken.origins(connection, episode)
 
+    def source_ids(self, episode: str) -> dict[str, str]:
+        """The sources that an episode's entries came from, by the entry's id; typed ones are left out."""
+        with self._opened.database.read() as connection:
+            return taken.source_ids(connection, episode)
+
     def source_spans(self, source_id: str) -> tuple[taken.SampleSpan, ...]:
         """Where a source's device samples lie, one span per episode and channel."""
         with self._opened.database.read() as connection:
             return taken.source_spans(connection, source_id)
-
-    def later_spans(self, span: taken.SampleSpan, seq: int) -> tuple[taken.SampleSpan, ...]:
-        """Where device samples of a span's episode and channel were laid after a sequence."""
-        with self._opened.database.read() as connection:
-            return taken.later_spans(connection, span, seq)
 
     def known_entry_ids(self, ids: Sequence[str]) -> frozenset[str]:
         """Those of `ids` that are entries of the store."""

@@ -15,6 +15,7 @@ from app.operations import intake as operations
 from app.operations.outcome import watched
 from app.words import Reader, sentence
 from core.record.message import RecordError
+from storage.intake.writing import Writing, check_writing, delimiter_said
 
 if TYPE_CHECKING:
     from storage.intake.findings import Doubt, Intake, Refusal
@@ -82,8 +83,19 @@ def _check_there(files: list[Path]) -> None:
 def _request(context: Context, path: Path, args: argparse.Namespace) -> operations.ReadRequest:
     return operations.ReadRequest(
         path, None, args.mapping, args.episode, dict(args.patient), context.local_zone(), args.clock_shift, args.leak,
-        args.sheet, args.encoding, args.header_line,
+        as_written(args),
     )  # fmt: skip
+
+
+def as_written(args: argparse.Namespace) -> Writing:
+    """What was said of how a table is written.
+
+    Raises:
+        RecordError: `table.delimiter`, `table.encoding_unknown`, `table.header_line`.
+    """
+    said = Writing(args.encoding, delimiter_said(args.delimiter), args.header_line, args.sheet)
+    check_writing(said)
+    return said
 
 
 def _progress(path: Path) -> Callable[[int, int], None]:

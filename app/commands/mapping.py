@@ -8,6 +8,7 @@ from dataclasses import replace
 from pathlib import Path
 
 from app.commands.context import Context
+from app.commands.intake import as_written
 from app.operations import mapping as operations
 from app.words import sentence
 from core.record.message import refuse
@@ -39,9 +40,9 @@ def _propose(context: Context, args: argparse.Namespace) -> int:
     """Print a proposal as JSON, to be completed and put; what is still open goes along as questions."""
     path = Path(_subject(args, "a table's file"))
     with context.open_or_create() as store:
-        request = operations.LookRequest(path, context.local_zone())
+        request = operations.LookRequest(path, context.local_zone(), as_written(args))
         looked = operations.look(store, context.by, context.now(), request).value
-    mapping = replace(looked.proposal.mapping, name=args.name or path.stem)
+    mapping = replace(looked.proposal.mapping, name=args.name or path.stem, written=looked.said)
     asked = open_questions(mapping, episode_given=False, has_offsets=looked.proposal.has_offsets)
     reader = context.reader()
     words = [sentence(m, reader) for m in (*asked, *looked.proposal.hints.values())]

@@ -22,9 +22,7 @@ if TYPE_CHECKING:
 class FilesInTurn(QObject):
     """Lives until the last file's dialog is closed. Leaving one file goes on to the next."""
 
-    def __init__(
-        self, model: SessionModel, paths: Sequence[Path], episodes: tuple[str, ...], window: Shell
-    ) -> None:
+    def __init__(self, model: SessionModel, paths: Sequence[Path], episodes: tuple[str, ...], window: Shell) -> None:
         super().__init__(window)
         self._model, self._window, self._episodes = model, window, episodes
         self._waiting, self._count = list(paths), len(paths)

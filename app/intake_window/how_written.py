@@ -1,8 +1,9 @@
-"""How a table is written: encoding, line of the header, sheet. Found by looking; what a person says beats it."""
+"""How a table is written: encoding, delimiter, line of the header, sheet. Found by looking; what is said beats it."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Signal
@@ -12,6 +13,8 @@ from app.intake_window.column_table import NoWheel
 from app.look.flow_row import FlowRow
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
+from core.record.message import RecordError
+from storage.intake.writing import AS_FOUND, Writing, delimiter_said
 
 if TYPE_CHECKING:
     from storage.intake.table import Table
@@ -23,16 +26,21 @@ LARGE = 1.25
 
 
 class HowWritten(QWidget):
-    """`changed()` when a person says that it is written otherwise."""
+    """`changed()` when a person says that it is written otherwise; `said` holds what was said, not what was found."""
 
     changed = Signal()
 
     def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._filling = False
+        self.said, self._delimiter = AS_FOUND, ""
         self.about = plain_label()
         self.about.setWordWrap(True)
-        self.sheet, self.encoding, self.header = QComboBox(), QComboBox(), QSpinBox()
+        self.sheet, self.encoding, self.mark, self.header = QComboBox(), QComboBox(), QComboBox(), QSpinBox()
+        self.mark.setEditable(True)
+        self.mark.setInsertPolicy(QComboBox.InsertPolicy.NoInsert)
+        self.mark.setCompleter(None)  # type: ignore[arg-type]  # a typed character is no beginning of a name
+        self.mark.setToolTip(self.tr("Choose, or type the character that stands between columns"))
         self.header.setRange(1, _MOST_LINES)
         self.header.setKeyboardTracking(False)
         self.header.setButtonSymbols(QSpinBox.ButtonSymbols.NoButtons)
@@ -45,8 +53,8 @@ class HowWritten(QWidget):
         whole.addWidget(self.about, 0 if large else 1)
         row = FlowRow(None, theme.px(8)) if large else QHBoxLayout()
         whole.addLayout(row)
-        fields = ((self.tr("Text in"), self.encoding), (self.tr("Header on line"), self.header),
-                  (self.tr("Sheet"), self.sheet))  # fmt: skip
+        fields = ((self.tr("Text in"), self.encoding), (self.tr("Columns apart by"), self.mark),
+                  (self.tr("Header on line"), self.header), (self.tr("Sheet"), self.sheet))  # fmt: skip
         for word, field in fields:
             label = QLabel(word)
             label.setProperty("role", "quiet")
@@ -55,43 +63,83 @@ class HowWritten(QWidget):
             self._labels[field] = label
             row.addWidget(label)
             row.addWidget(field)
-        for box in (self.sheet, self.encoding):
-            box.setMinimumContentsLength(9)
+        for box, letters in ((self.sheet, 9), (self.encoding, 9), (self.mark, 8)):
+            box.setMinimumContentsLength(letters)
             box.installEventFilter(self._still)
-            box.activated.connect(self._tell)
-        self.header.valueChanged.connect(self._tell)
+        self.sheet.activated.connect(self._sheet_said)
+        self.encoding.activated.connect(self._encoding_said)
+        self.mark.activated.connect(self._mark_said)
+        line = self.mark.lineEdit()
+        if line is not None:
+            line.editingFinished.connect(self._mark_said)
+        self.header.valueChanged.connect(self._header_said)
 
-    def show_table(self, table: Table) -> None:
-        """Show how a table is read now."""
+    def show_table(self, table: Table, said: Writing) -> None:
+        """Show how a table is read now, and keep what was said of it."""
         self._filling = True
+        self.said = said
         d = table.dialect
         self.about.setText(self._words(table))
         _fill(self.sheet, table.sheets, d.sheet)
         _fill(self.encoding, _OFFERED if d.encoding in _OFFERED else (d.encoding, *_OFFERED), d.encoding)
+        self._delimiter = d.delimiter
+        self._fill_marks()
         self.header.setValue(d.header_line)
-        for field, matters in ((self.sheet, len(table.sheets) > 1), (self.encoding, table.book is None)):
+        is_text = table.book is None
+        for field, matters in ((self.sheet, len(table.sheets) > 1), (self.encoding, is_text), (self.mark, is_text)):
             field.setVisible(matters)
             self._labels[field].setVisible(matters)
         self._filling = False
 
+    def _fill_marks(self) -> None:
+        mark = self._delimiter
+        names = {",": self.tr("comma"), ";": self.tr("semicolon"), "\t": self.tr("tab"), "|": self.tr("bar"),
+                 " ": self.tr("space"), ":": self.tr("colon")}  # fmt: skip
+        self.mark.clear()
+        for key in (*names, *((mark,) if mark and mark not in names else ())):
+            self.mark.addItem(names.get(key, key), key)
+        self._show_mark()
+
+    def _show_mark(self) -> None:
+        index = max(0, self.mark.findData(self._delimiter))
+        self.mark.setCurrentIndex(index)
+        self.mark.setEditText(self.mark.itemText(index))
+
     def _words(self, table: Table) -> str:
-        d, count = table.dialect, len(table.header)
-        if table.book is not None:
-            return self.tr("{count} columns").format(count=count)
-        marks = {",": self.tr("comma"), ";": self.tr("semicolon"), "\t": self.tr("tab"), "|": self.tr("bar")}
-        text = self.tr("{count} columns apart by {mark}").format(count=count, mark=marks[d.delimiter])
-        if d.encoding_is_sure:
+        text = self.tr("{count} columns").format(count=len(table.header))
+        if table.dialect.encoding_is_sure:
             return text
         return text + self.tr(". The encoding is assumed: look at letters with accents.")
 
-    @property
-    def said(self) -> tuple[str, str, int]:
-        """Sheet, encoding (empty for a spreadsheet) and line of the header as they stand."""
-        encoding = str(self.encoding.currentData() or "") if self.encoding.isVisibleTo(self) else ""
-        return str(self.sheet.currentData() or ""), encoding, self.header.value()
+    def _sheet_said(self) -> None:
+        self._say(Writing(sheet=str(self.sheet.currentData() or "")))  # its header is found anew
 
-    def _tell(self) -> None:
-        if not self._filling:
+    def _encoding_said(self) -> None:
+        self._say(replace(self.said, encoding=str(self.encoding.currentData() or "")))
+
+    def _header_said(self, line: int) -> None:
+        self._say(replace(self.said, header_line=line))
+
+    def _mark_said(self) -> None:
+        """A delimiter was chosen or typed; one that cannot be is taken back, and why is said."""
+        text = self.mark.currentText()
+        known = self.mark.findText(text)
+        mark, told = "", ""
+        try:
+            mark = str(self.mark.itemData(known)) if known >= 0 else delimiter_said(text)
+        except RecordError:
+            told = self.tr("Columns cannot be apart by '{text}': it takes one character that is no letter, digit or "
+                           "quote.").format(text=text[:20])  # fmt: skip
+        if told:
+            self.about.setText(told)
+        if mark and mark != self._delimiter:
+            self._say(replace(self.said, delimiter=mark))
+        else:
+            self._show_mark()
+
+    def _say(self, said: Writing) -> None:
+        if not self._filling and said != self.said:
+            self.said = said
             self.changed.emit()
 
 

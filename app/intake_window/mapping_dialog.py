@@ -32,6 +32,7 @@ from app.session.model import SessionModel
 from app.words import Reader, sentence
 from core.record.message import Message
 from storage.intake.mapping import ColumnUse, Mapping, open_questions
+from storage.intake.writing import AS_FOUND, Writing
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -48,7 +49,6 @@ class MappingDialog(FittedDialog):
     ) -> None:  # fmt: skip
         super().__init__(parent)
         self._given = given
-        self._said = ("", "", 0)
         self._model, self._path, self._reader, self._theme = model, path, reader, theme
         self.looked: Looked | None = None
         self.mapping = Mapping()
@@ -138,44 +138,41 @@ class MappingDialog(FittedDialog):
 
     # looking
 
-    def _ask(self, sheet: str = "", encoding: str = "", header_at: int = 0) -> None:
+    def _ask(self, said: Writing = AS_FOUND, by: str | None = None) -> None:
+        """Look at the table, as was said of it; `by` a kept mapping, none (as proposed), or the one that fits."""
         self.asked.setText(self.tr("Looking at {name}. Nothing is recorded yet.").format(name=self._path.name))
-        request = LookRequest(self._path, self._model.session.zone, sheet, encoding, header_at)
+        given = None if self._given is None else self._given.mapping
+        request = LookRequest(self._path, self._model.session.zone, said, given, by)
         self._model.ask(operations.look, request, done=self._show, failed=self._failed)
 
     def _look_again(self) -> None:
-        """A person says how it is written: where the header stands is found anew in another sheet."""
-        sheet, encoding, header_at = self.written.said
-        dialect = self.looked.table.dialect if self.looked is not None else None
-        self._said = (sheet, encoding, 0 if dialect is not None and sheet != dialect.sheet else header_at)
-        self._ask(*self._said)
+        """A person says how it is written."""
+        self._ask(self.written.said)
 
     def _show(self, outcome: Outcome[Looked]) -> None:
         looked = self.looked = outcome.value
-        self.written.show_table(looked.table)
+        self.written.show_table(looked.table, looked.said)
         self.kept.clear()
         for word in ("", *looked.kept):
             self.kept.addItem(word or self.tr("as proposed"), word)
         for widget in (self.kept, self._kept_label):
             widget.setVisible(bool(looked.kept))
-        known = looked.recognised
-        given = self._given
-        if given is not None and given.mapping is not None and given.mapping.header == looked.table.header:
-            self.kept.setCurrentIndex(max(0, self.kept.findData(given.mapping.name)))
-            self.answers.shift.setValue(given.clock_shift_s)
-            self._begin(given.mapping, given.episode)  # another part of what was answered a moment ago
-            return
+        known, given = looked.recognised, self._given
         self.kept.setCurrentIndex(max(0, self.kept.findData(known.name if known is not None else "")))
+        if given is not None and known is not None and known == given.mapping:
+            self.answers.shift.setValue(given.clock_shift_s)
+            self._begin(known, given.episode)  # another part of what was answered a moment ago
+            return
         self._begin(known or looked.proposal.mapping)
 
     def _take_kept(self) -> None:
-        if self.looked is not None:
-            kept = self.looked.kept.get(str(self.kept.currentData() or ""))
-            self._begin(kept or self.looked.proposal.mapping)
+        """A mapping was chosen: the table is opened as that one says that it is written."""
+        self._ask(by=str(self.kept.currentData() or ""))
 
     def _begin(self, mapping: Mapping, episode: str = "") -> None:
         """Show a mapping: its columns, its answers, its preview."""
-        self.mapping = replace(mapping, header=self.looked.table.header if self.looked is not None else ())
+        header = self.looked.table.header if self.looked is not None else ()
+        self.mapping = replace(mapping, header=header, written=self.written.said)
         self.name.setText(mapping.name)
         self._show_columns()
         self._show_answers(episode)  # whose values they are is asked: the episode in hand may be another patient's
@@ -252,20 +249,29 @@ class MappingDialog(FittedDialog):
         self.go.setEnabled(not asked)
         if asked:
             more = self.tr(" ({count} more to answer)").format(count=len(asked) - 1) if len(asked) > 1 else ""
-            self.asked.setText(sentence(asked[0], self._reader) + more)
+            self.asked.setText(self._several() + sentence(asked[0], self._reader) + more)
         else:
-            self.asked.setText(self.tr("All is answered. The whole file is read next; nothing is recorded yet."))
+            self.asked.setText(
+                self._several() + self.tr("All is answered. The whole file is read next; nothing is recorded yet.")
+            )
         answers = Answers(self.answers.episode_key, self.answers.shift.value())
         self.preview.show_rows(preview(self.looked.table, self.mapping, answers))
+
+    def _several(self) -> str:
+        """That kept mappings fit which read the table in different ways: none of them is taken unasked."""
+        names = () if self.looked is None else self.looked.several
+        if not names or self.kept.currentData():
+            return ""
+        text = self.tr("Several kept mappings fit: {names}. Choose one under Mapping, or answer anew. ")
+        return text.format(names=", ".join(names))
 
     def _go_on(self) -> None:
         self.mapping = replace(self.mapping, name=self.name.text().strip())
         if self.mapping.name:
             self._model.ask(operations.keep, self.mapping, failed=self._failed)
-        sheet, encoding, header_at = self._said
-        sheet = sheet or (self.looked.table.dialect.sheet if self.looked is not None else "")
+        sheet = self.looked.table.dialect.sheet if self.looked is not None else ""
         request = ReadRequest(self._path, self.mapping, "", self.answers.episode_key, {}, self._model.session.zone,
-                              self.answers.shift.value(), "", sheet, encoding, header_at)  # fmt: skip
+                              self.answers.shift.value(), "", replace(self.written.said, sheet=sheet))  # fmt: skip
         self.accept()
         self.ready.emit(request)
 

@@ -120,7 +120,7 @@ def preview_begin(store: Store, who: str, now: Instant, request: BeginRequest) -
 
 def _check_free(store: Store, key: str) -> None:
     """Refuse a key in use; one whose episode was taken back whole may begin again."""
-    if store.has_episode(key) and load(store, key).standing:
+    if store.has_episode(key) and not load(store, key).is_empty:
         raise refuse("episode.exists", episode=key, accepted="a key that is not in use")
 
 

@@ -124,8 +124,8 @@ def _keys(store: Store, request: WardRequest) -> Sequence[str]:
 
 def _has_begun(record: Episode, request: WardRequest) -> bool:
     """Whether anything stood of an episode by the moment; one begun and taken back, or not yet known, has not."""
-    if request.episodes is not None or not record.standing:
-        return bool(record.standing)
+    if record.is_empty or request.episodes is not None:
+        return not record.is_empty
     first = record.standing[0].entry.at if record.first_at is None else record.first_at
     return first <= request.as_of
 

@@ -10,10 +10,12 @@ from typing import TYPE_CHECKING
 from app.operations.outcome import Outcome, report
 from core.record.instant import Instant
 from core.record.message import refuse
+from storage.intake.writing import AS_FOUND, Writing
 
 if TYPE_CHECKING:
     from storage.intake.findings import Intake
     from storage.intake.mapping import Mapping
+    from storage.intake.recognising import Recognised
     from storage.intake.withdrawal import Withdrawn
     from storage.reading_sources import TakenSource
     from storage.store import Store
@@ -25,7 +27,8 @@ class ReadRequest:
 
     `mapping` is how a table is read (`mapping_name`: one that is kept; neither: one recognised by its header).
     `episode` is whose the file is, where it does not say; `patients` gives single identifiers their episode.
-    `zone` is for times without an offset; `clock_shift_s` is added to a device's times. `episodes` are offered to a
+    `zone` is for times without an offset; `clock_shift_s` is added to a device's times. `said` is how a table is
+    written; what it leaves open the mapping says, and then what is found. `episodes` are offered to a
     person who has to say whose an identifier is.
     """
 
@@ -37,9 +40,7 @@ class ReadRequest:
     zone: str = ""
     clock_shift_s: float = 0.0
     leak_definition: str = ""
-    sheet: str = ""
-    encoding: str = ""
-    header_at: int = 0
+    said: Writing = AS_FOUND
     episodes: tuple[str, ...] = ()
 
 
@@ -95,20 +96,17 @@ def _read(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
 
 def _read_table(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
     from storage.intake.findings import UnreadableFileError
-    from storage.intake.mapping import kept_mapping, kept_mappings, recognised
-    from storage.intake.table import open_table
     from storage.intake.table_reading import read_table, unreadable_table
     from storage.intake.table_rows import Answers
 
     try:
-        table = open_table(wanted.path, sheet=wanted.sheet, encoding=wanted.encoding, header_at=wanted.header_at)
+        found = _table(store, wanted)
     except UnreadableFileError as error:
         return unreadable_table(wanted.path, error)
-    mapping = wanted.mapping
-    if mapping is None and wanted.mapping_name:
-        mapping = kept_mapping(store, wanted.mapping_name)
-    if mapping is None:
-        mapping = recognised(table.header, kept_mappings(store))
+    table, mapping = found.table, found.mapping
+    if mapping is None and found.several:
+        raise refuse("mapping.several_fit", path=wanted.path.name, names=" | ".join(found.several)[:300],
+                     accepted="one of them, named by --mapping")  # fmt: skip
     if mapping is None:
         raise refuse("mapping.none_fits", path=wanted.path.name, columns=" | ".join(table.header)[:300],
                      accepted="a mapping, by name, or made in the window or by luffmark mapping propose")  # fmt: skip
@@ -118,6 +116,21 @@ def _read_table(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
         mapping = replace(mapping, time=replace(mapping.time, zone=wanted.zone))
     answers = Answers(wanted.episode, wanted.clock_shift_s)
     return read_table(table, mapping, now=now, answers=answers, existing=store, progress=report)
+
+
+def _table(store: Store, wanted: ReadRequest) -> Recognised:
+    """The table as it is written, with the mapping given, named or recognised."""
+    from storage.intake.mapping import kept_mapping, kept_mappings
+    from storage.intake.recognising import Recognised, recognise
+    from storage.intake.table import open_table
+
+    mapping = wanted.mapping
+    if mapping is None and wanted.mapping_name:
+        mapping = kept_mapping(store, wanted.mapping_name)
+    if mapping is None:
+        return recognise(wanted.path, kept_mappings(store), wanted.said)
+    said = wanted.said.over(mapping.written)
+    return Recognised(open_table(wanted.path, said), said, mapping)
 
 
 def _read_results(store: Store, now: Instant, wanted: ReadRequest, *, is_hl7: bool) -> Intake:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome
 from core.record.instant import Instant
 from core.record.message import RecordError
@@ -16,35 +17,45 @@ from storage.intake.mapping import (
     keep_mapping,
     kept_mapping,
     kept_mappings,
-    recognised,
 )
+from storage.intake.writing import AS_FOUND, Writing
 
 if TYPE_CHECKING:
     from storage.intake.proposals import Proposal
+    from storage.intake.recognising import Recognised
     from storage.intake.table import Table
     from storage.store import Store
 
 
 @dataclass(frozen=True, slots=True)
 class LookRequest:
-    """A table to look at. `zone` is proposed for times without an offset; what a person says beats what is found."""
+    """A table to look at. `zone` is proposed for times without an offset; what a person says beats what is found.
+
+    `given` is what was answered a moment ago for another part of the same night: it is taken where it fits. `by` is
+    the kept mapping that a person chose, an empty text the proposal; None: the one that is recognised.
+    """
 
     path: Path
     zone: str = ""
-    sheet: str = ""
-    encoding: str = ""
-    header_at: int = 0
+    said: Writing = AS_FOUND
+    given: Mapping | None = None
+    by: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
 class Looked:
-    """What a table shows: its beginning, what is proposed, the mapping that was recognised, all that are kept."""
+    """What a table shows: its beginning, what is proposed, the mapping that was recognised, all that are kept.
+
+    `said` is how it was opened, by the person or the mapping; `several` are mappings that fit and read it otherwise.
+    """
 
     table: Table
     proposal: Proposal
     recognised: Mapping | None
     kept: Map[str, Mapping]
     episodes: tuple[str, ...]
+    said: Writing = AS_FOUND
+    several: tuple[str, ...] = ()
 
 
 def look(store: Store, who: str, now: Instant, request: LookRequest) -> Outcome[Looked]:
@@ -56,15 +67,36 @@ def look(store: Store, who: str, now: Instant, request: LookRequest) -> Outcome[
     """
     from storage.intake.findings import UnreadableFileError
     from storage.intake.proposals import propose
-    from storage.intake.table import open_table
 
+    kept = kept_mappings(store)
     try:
-        table = open_table(request.path, sheet=request.sheet, encoding=request.encoding, header_at=request.header_at)
+        found = _opened(request, kept)
     except UnreadableFileError as error:
         raise RecordError(error.message) from error
-    kept = kept_mappings(store)
-    proposal, known = propose(table, request.zone), recognised(table.header, kept)
-    return Outcome(Looked(table, proposal, known, kept, store.open_episode_keys()), store.head())
+    looked = Looked(found.table, propose(found.table, request.zone), found.mapping, kept, _open_episodes(store),
+                    found.said, found.several)  # fmt: skip
+    return Outcome(looked, store.head())
+
+
+def _opened(request: LookRequest, kept: Map[str, Mapping]) -> Recognised:
+    """The table with the mapping that a person chose, gave a moment ago for another part, or that is recognised."""
+    from storage.intake.recognising import Recognised, recognise
+    from storage.intake.table import open_table
+
+    if request.by is not None:
+        chosen = kept.get(request.by)
+        said = request.said if chosen is None else request.said.over(chosen.written)
+        return Recognised(open_table(request.path, said), said, chosen)
+    if request.given is not None:
+        again = recognise(request.path, {request.given.name: request.given}, request.said)
+        if again.mapping is not None:
+            return again
+    return recognise(request.path, kept, request.said)
+
+
+def _open_episodes(store: Store) -> tuple[str, ...]:
+    """The episodes that go on; one of which nothing stands is nobody's."""
+    return tuple(key for key in store.open_episode_keys() if not shelf_of(store).get(store, key).is_empty)
 
 
 def keep(store: Store, who: str, now: Instant, request: Mapping) -> Outcome[str]:

@@ -17,6 +17,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "mapping.no_time": "When was it? Accepted: {accepted}.",
     "intake.episode_not_asked": "A log file names its own episodes, not '{value}'. Accepted: {accepted}.",
     "mapping.none_fits": "No mapping that is kept fits {path}, whose columns are: {columns}. Accepted: {accepted}.",
+    "mapping.several_fit": "Several kept mappings fit {path} and read it in different ways: {names}. "
+    "Accepted: {accepted}.",
     "mapping.nothing_named": "Nothing was named. Accepted: {accepted}.",
     "mapping.nothing": "No column is mapped. Accepted: {accepted}.",
     "mapping.time_order": "How are the dates of column '{column}' written? Accepted: {accepted}.",
@@ -42,6 +44,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "sheet.too_many_cells": "The spreadsheet has too many cells. Accepted: at most {accepted}.",
     "sheet.too_many_parts": "The spreadsheet has too many parts. Accepted: at most {accepted}.",
     "sheet.unknown": "There is no such sheet. Accepted: {accepted}.",
+    "table.delimiter": "Columns cannot be apart by '{value}'. Accepted: {accepted}.",
+    "table.encoding_unknown": "There is no encoding '{value}'. Accepted: {accepted}.",
+    "table.header_line": "The header cannot stand on line {value}. Accepted: {accepted}.",
     "table.encoding_assumed": "The text is taken as {encoding}: check letters that are not plain.",
     "table.no_rows": "No row stands under the first line, which must be the header. Accepted: {accepted}.",
     "table.too_wide": "The table has too many columns. Accepted: at most {accepted}.",

@@ -137,6 +137,11 @@ class Episode:
         """What the ward calls this episode; its key where no label was given."""
         return self.latest_text("label") or self.key
 
+    @property
+    def is_empty(self) -> bool:
+        """Whether nothing stands of it: begun by mistake, or all of its files withdrawn."""
+        return not self.standing and not any(len(s) for s in self.series.values())
+
     @cached_property
     def first_at(self) -> Instant | None:
         """The first moment that anything but a profile fact was logged for; None for an empty record."""

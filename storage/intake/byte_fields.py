@@ -76,7 +76,7 @@ def cut_fields(data: bytes, delimiter: str, columns: int, lines: int) -> ByteFie
     >>> fields.texts(1), fields.text(1, 0)
     (['12', '7'], 'b')
     """
-    if not data or b'"' in data or b"\r" in data:
+    if not data or b'"' in data or b"\r" in data or not delimiter.isascii():
         return None
     padded = data + bytes(_PAD)
     raw = np.frombuffer(padded, np.uint8)

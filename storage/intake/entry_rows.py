@@ -16,11 +16,9 @@ from storage.intake.gas_rows import gas_row_doubts
 from storage.intake.pressures import Contradiction, contradictions
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import LeakUse
-from storage.rules import Lookup, Replaced, problem
+from storage.rules import WITHDRAWN_WHOLE, Lookup, Replaced, problem
 from storage.store import Store
 
-WITHDRAWN_WHOLE = "withdrawn with its whole file"
-"""The reason on each entry of a file that was withdrawn whole."""
 _Key = tuple[str, Instant, str, float | None, str | None, str, Action, str]
 _IN_FILE = 1 << 40
 """Sequences that a file's rows would take: later than any of the store."""
@@ -94,7 +92,10 @@ class EntryRows:
     def _held_keys(self, episode: str) -> set[_Key]:
         """What the store holds of an episode, but for rows withdrawn with their whole file: those may come again."""
         held = self._held_entries(episode)
-        again = {e.replaces for e in held if e.action is Action.WITHDRAW and e.reason == WITHDRAWN_WHOLE}
+        again: set[str] = set()
+        for e in sorted(held, key=lambda e: -e.seq):  # from the end of each chain to what it began with
+            if e.replaces and (e.id in again or (e.action is Action.WITHDRAW and e.reason == WITHDRAWN_WHOLE)):
+                again |= {e.id, e.replaces}
         return {_key_of(e) for e in held if e.id not in again}
 
     @staticmethod

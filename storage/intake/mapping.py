@@ -13,6 +13,7 @@ from typing import Protocol
 
 from core.record.channels import CHANNELS, LEAK_DEFINITIONS, Kind
 from core.record.message import Message, refuse
+from storage.intake.writing import AS_FOUND, Writing, check_writing
 from storage.rules import is_device_channel
 
 PREFIX = "mapping:"
@@ -20,7 +21,8 @@ ORDERS = ("iso", "dmy", "mdy", "ymd", "epoch_s", "epoch_ms")
 """How a date is written: ISO 8601; day, month, year; month, day, year; year, month, day; seconds or ms since 1970."""
 WRITERS = ("person", "device")
 DECIMALS = (".", ",")
-FORMAT = 1
+FORMAT = 2
+"""1 knows nothing of `written`; a mapping without it is kept as 1, so that older programs go on reading it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,6 +63,7 @@ class LongUse:
 class Mapping:
     """How one kind of table is read. Wide: `columns`. Long: `long` and no columns.
 
+    `written` is what a person said of how such a table is written; the rest of that is found anew in each.
     `codes` are local codes of results (HL7, FHIR) with their channels; a mapping of those alone has no header.
     """
 
@@ -75,6 +78,7 @@ class Mapping:
     written_by: str = ""
     leak_definition: str = ""
     codes: Map[str, str] = field(default_factory=lambda: MappingProxyType({}))
+    written: Writing = AS_FOUND
     format: int = FORMAT
 
     @property
@@ -150,14 +154,15 @@ def to_text(mapping: Mapping) -> str:
     """The mapping as it is kept (JSON)."""
     import msgspec
 
-    return msgspec.json.encode(replace(mapping, codes=dict(mapping.codes))).decode()
+    number = FORMAT if mapping.written != AS_FOUND else 1
+    return msgspec.json.encode(replace(mapping, codes=dict(mapping.codes), format=number)).decode()
 
 
 def from_text(text: str) -> Mapping:
     """A mapping as it was kept.
 
     Raises:
-        RecordError: `mapping.unreadable`, `mapping.newer`.
+        RecordError: `mapping.unreadable`, `mapping.newer`, and as `check_writing`.
     """
     import msgspec
 
@@ -167,7 +172,8 @@ def from_text(text: str) -> Mapping:
         raise refuse("mapping.unreadable", detail=str(error)[:200], accepted="a mapping of this program") from None
     if found.format > FORMAT:
         raise refuse("mapping.newer", format=found.format, accepted=FORMAT)
-    return found
+    check_writing(found.written)
+    return replace(found, format=FORMAT)
 
 
 class Layouts(Protocol):
@@ -219,16 +225,13 @@ def forget_mapping(store: Layouts, name: str) -> None:
     store.put_layout(PREFIX + name, None)
 
 
-def recognised(header: tuple[str, ...], kept: Map[str, Mapping]) -> Mapping | None:
-    """The kept mapping that fits a header: the same names, letters' case and order aside; else None.
+def fits(mapping: Mapping, header: tuple[str, ...]) -> bool:
+    """Whether a mapping is of tables with this header: the same names, letters' case and order aside.
 
-    >>> m = Mapping("a", ("Time", "pH"))
-    >>> recognised(("ph", "time"), {"a": m}) is m
+    >>> fits(Mapping("a", ("Time", "pH")), ("ph", "time"))
     True
     """
-    wanted = {_plain(h) for h in header}
-    fits = [m for m in kept.values() if m.header and {_plain(h) for h in m.header} == wanted]
-    return fits[0] if fits else None
+    return bool(mapping.header) and {_plain(h) for h in mapping.header} == {_plain(h) for h in header}
 
 
 def _plain(name: str) -> str:

@@ -14,8 +14,8 @@ from core.record.entries import Action, Entry, NewEntry
 from core.record.instant import Instant
 from core.record.message import Message
 from storage.draft_batch import DraftEntry
-from storage.intake.entry_rows import WITHDRAWN_WHOLE
 from storage.intake.row_reading import EntryRow
+from storage.rules import WITHDRAWN_WHOLE
 from storage.store import Store
 
 

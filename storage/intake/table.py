@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from pathlib import Path
 from typing import Protocol
 
@@ -11,6 +11,7 @@ from storage.intake.findings import unreadable
 from storage.intake.spreadsheet import SheetTable, Workbook
 from storage.intake.table_dialect import HEAD, Dialect, column_names, header_line, text_dialect
 from storage.intake.table_text import RowBlock, TextTable
+from storage.intake.writing import AS_FOUND, Writing, check_writing
 
 FIRST_ROWS = 200
 """Rows looked at for proposals and the preview."""
@@ -57,28 +58,27 @@ class Table:
         return TextTable(self.path, self.dialect, progress, cancelled)
 
 
-def open_table(path: Path | str, *, sheet: str = "", encoding: str = "", header_at: int = 0) -> Table:
-    """Look at a table's beginning. What a person says (sheet, encoding, line of the header) beats what is found.
+def open_table(path: Path | str, said: Writing = AS_FOUND, book: Workbook | None = None) -> Table:
+    """Look at a table's beginning. What a person says of how it is written beats what is found.
+
+    `book` is the spreadsheet, where it was opened already.
 
     Raises:
         UnreadableFileError: it is no table, or one that cannot be read safely.
+        RecordError: what is said of it cannot be.
         OSError: it cannot be opened.
     """
+    check_writing(said)
     file = Path(path)
+    if book is not None:
+        return _open_sheet(file, book, said)
     with file.open("rb") as stream:
         head = stream.read(HEAD)
     if head.startswith(b"\xd0\xcf\x11\xe0"):
         raise unreadable(1, file.name, "sheet.old_format", accepted="XLSX, ODS or CSV")
     if head.startswith(b"PK\x03\x04"):
-        return _open_sheet(file, sheet, header_at)
-    whole = len(head) < HEAD
-    if encoding:
-        found = text_dialect(head.decode(encoding, "ignore").encode("utf-8"), is_whole=whole)
-        dialect = replace(found, encoding=encoding, encoding_is_sure=True)
-    else:
-        dialect = text_dialect(head, is_whole=whole)
-    if header_at:
-        dialect = replace(dialect, header_line=header_at)
+        return _open_sheet(file, Workbook(file), said)
+    dialect = text_dialect(head, is_whole=len(head) < HEAD, said=said)
     rows: list[list[str]] = []
     lines: list[int] = []
     for block in TextTable(file, dialect):
@@ -89,18 +89,17 @@ def open_table(path: Path | str, *, sheet: str = "", encoding: str = "", header_
     return _begun(file, dialect, rows[: FIRST_ROWS + 1], lines)
 
 
-def _open_sheet(file: Path, sheet: str, header_at: int) -> Table:
-    book = Workbook(file)
-    name = sheet or next(iter(book.sheets), "")
+def _open_sheet(file: Path, book: Workbook, said: Writing) -> Table:
+    name = said.sheet or next(iter(book.sheets), "")
     numbers: list[int] = []
     rows: list[list[str]] = []
     first = 1
-    for number, cells in book.rows(name) if header_at == 0 else ():
+    for number, cells in book.rows(name) if said.header_line == 0 else ():
         rows.append(cells)
         first = number - len(rows) + 1
         if len(rows) > 60:
             break
-    header = header_at or header_line(rows) + first - 1
+    header = said.header_line or header_line(rows) + first - 1
     rows = []
     for number, cells in book.rows(name, header):
         if any(cells):

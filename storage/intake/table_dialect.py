@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+import codecs
 import csv
 from collections import Counter
 from dataclasses import dataclass
 
 from storage.intake.findings import unreadable
+from storage.intake.writing import AS_FOUND, Writing, delimiter_said
 
 HEAD = 256 * 1024
 """Bytes looked at to tell how a file is written."""
@@ -40,8 +42,8 @@ class Dialect:
     encoding_is_sure: bool = True
 
 
-def text_dialect(head: bytes, *, is_whole: bool) -> Dialect:
-    """How text is written, by its first bytes.
+def text_dialect(head: bytes, *, is_whole: bool, said: Writing = AS_FOUND) -> Dialect:
+    """How text is written, by its first bytes; what a person says of it is taken as said.
 
     Raises:
         UnreadableFileError: `file.empty`, `file.binary`.
@@ -51,12 +53,26 @@ def text_dialect(head: bytes, *, is_whole: bool) -> Dialect:
     """
     if not head.strip():
         raise unreadable(1, "", "file.empty", accepted="a header and rows")
-    encoding, sure = _encoding(head, is_whole=is_whole)
+    if said.encoding:
+        encoding, sure = said.encoding, _fits_as_said(head, said.encoding, is_whole=is_whole)
+    else:
+        encoding, sure = _encoding(head, is_whole=is_whole)
     text = head.decode(encoding, "ignore")
     lines = text.splitlines()
     lines = lines[: -1 if not is_whole and len(lines) > 1 else None][:_LOOKED_AT]
-    delimiter = _delimiter(lines)
-    return Dialect(encoding, delimiter, header_line(_rows(lines, delimiter)), "", sure)
+    delimiter = delimiter_said(said.delimiter) or _delimiter(lines)
+    return Dialect(encoding, delimiter, said.header_line or header_line(_rows(lines, delimiter)), "", sure)
+
+
+def _fits_as_said(head: bytes, encoding: str, *, is_whole: bool) -> bool:
+    """Whether nothing speaks against an encoding that was said: letters that are UTF-8 are hardly of another one."""
+    if head.isascii() or codecs.lookup(encoding).name.startswith("utf"):
+        return True
+    try:
+        head.decode("utf-8")
+    except UnicodeDecodeError as error:
+        return is_whole or error.start < len(head) - 4
+    return False
 
 
 def _encoding(head: bytes, *, is_whole: bool) -> tuple[str, bool]:

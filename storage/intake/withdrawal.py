@@ -1,69 +1,133 @@
-"""Withdrawing all that a file brought: entries by their inverse, samples by masks; what lay under them comes back."""
+"""Withdrawing all that a file brought: entries by their inverse, samples by a mask of their source.
+
+What lay under it comes back, as if the file had never been taken, in whatever order files are withdrawn: the samples
+of a withdrawn source are passed over in reading, and no inverse brings back the value of another withdrawn file.
+"""
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
-
-import numpy as np
+from collections.abc import Iterable
+from dataclasses import dataclass, field, replace
 
 from core.record.entries import Action, Entry, NewEntry
 from core.record.instant import Instant
+from core.record.knowledge import REPLACING_ACTIONS, VALUE_ACTIONS
 from core.record.message import refuse
-from core.record.samples import DeviceSamples
 from storage.draft_batch import DraftBatch, DraftEntry, Receipt, SourceFacts
-from storage.intake.entry_rows import WITHDRAWN_WHOLE as WHOLE
-from storage.reading_sources import SampleSpan, TakenSource
-from storage.store import Store, encoded
+from storage.reading_sources import SampleSpan
+from storage.rules import WITHDRAWN_WHOLE
+from storage.store import Store
+
+_NOT_YET = 1 << 62
 
 
 @dataclass(frozen=True, slots=True)
 class Withdrawn:
-    """What was withdrawn. `kept` counts entries that somebody has corrected since, which stay as corrected."""
+    """What was withdrawn. `kept` counts entries that somebody has corrected since, which stay as corrected.
+
+    `emptied` are the episodes of which nothing stands any more: no screen shows them.
+    """
 
     name: str
     entries: int
     sample_spans: int
     kept: int
     receipt: Receipt
+    emptied: tuple[str, ...] = ()
 
 
 def withdraw_source(store: Store, source_id: str, *, by: str, now: Instant) -> Withdrawn:
     """Withdraw all that a source brought, in one batch.
 
+    A file all of whose values were corrected since is withdrawn too: they must not come back with a correction's end.
+
     Raises:
         RecordError: `intake.unknown_source`, `intake.withdrawn_already`.
     """
-    source = next((s for s in store.sources() if s.id == source_id), None)
+    sources = store.sources()
+    source = next((s for s in sources if s.id == source_id), None)
     if source is None:
         raise refuse("intake.unknown_source", value=source_id[:80], accepted="a file that was taken in")
-    entries = store.source_entries(source_id)
-    superseded = store.superseded([e.id for e in entries])
-    standing = [e for e in entries if e.id not in superseded and e.action is not Action.WITHDRAW]
-    masked = {(e.episode, e.channel) for s in store.source_spans(source_id) for e in store.entries(s.episode)
-              if e.action is Action.MASK and e.source == source_id and e.reason == WHOLE}  # fmt: skip
-    spans = [s for s in store.source_spans(source_id) if (s.episode, s.channel) not in masked]
-    if not standing and not spans:
+    gone = {str(s.facts.get("of", "")): s.first_seq for s in sources if s.kind == "withdrawal"}
+    if source_id in gone:
         raise refuse("intake.withdrawn_already", path=source.name, accepted="a file that still stands")
-    drafts = [DraftEntry(_inverse(store, e, by)) for e in reversed(standing)]
-    drafts += [DraftEntry(_mask(s, source_id, by)) for s in spans]
-    restored = [block for s in spans for block in _under(store, s, source)]
+    chains = _Chains(store, {source_id: _NOT_YET, **gone})
+    brought = [e for e in store.source_entries(source_id) if e.action in REPLACING_ACTIONS | VALUE_ACTIONS]
+    ends = {chains.end(e).id: chains.end(e) for e in brought if chains.brought_by_file(e)}
+    spans = store.source_spans(source_id)
+    made = (chains.inverse(e, by) for e in sorted(ends.values(), key=lambda e: -e.seq))
+    inverses = [new for new in made if new is not None]
+    drafts = tuple(DraftEntry(new) for new in (*inverses, *(_mask(s, source_id, by) for s in spans)))
     facts = SourceFacts("withdrawal", source.name, facts={"of": source_id})
-    chunks = tuple(chunk for block in restored for chunk in encoded(replace(block, source=facts.id)))
-    batch = DraftBatch(by, "intake.withdraw", tuple(drafts), chunks, facts)
-    receipt = store.append_drafts((batch,), (now,))[0]
-    kept = sum(e.id in superseded and e.action is not Action.WITHDRAW for e in entries)
-    return Withdrawn(source.name, len(standing), len(spans), kept, receipt)
+    receipt = store.append_drafts((DraftBatch(by, "intake.withdraw", drafts, (), facts),), (now,))[0]
+    kept = sum(chains.end(e).id not in ends and chains.end(e).action is not Action.WITHDRAW for e in brought)
+    touched = dict.fromkeys([d.entry.episode for d in drafts])
+    emptied = tuple(key for key in touched if store.episode(key).is_empty)
+    return Withdrawn(source.name, len(inverses), len(spans), kept, receipt, emptied)
 
 
-def _inverse(store: Store, entry: Entry, by: str) -> NewEntry:
-    """The entry that brings back what stood before a file's entry."""
-    before = None
-    if entry.replaces:
-        before = next((e for e in store.entries(entry.episode) if e.id == entry.replaces), None)
-    if before is None or before.action in (Action.WITHDRAW, Action.MASK, Action.SHIFT):
-        return NewEntry(entry.episode, entry.channel, entry.at, zone=entry.zone, by=by, action=Action.WITHDRAW,
-                        replaces=entry.id, reason=WHOLE)  # fmt: skip
-    return replace(as_new(before), by=by, action=Action.CORRECT, replaces=entry.id, reason=WHOLE)
+@dataclass
+class _Chains:
+    """The chains of corrections that a file is part of. `gone`: withdrawn files, and from which sequence on."""
+
+    store: Store
+    gone: dict[str, int]
+    _entries: dict[str, tuple[Entry, ...]] = field(default_factory=dict)
+    _by_id: dict[str, Entry] = field(default_factory=dict)
+    _followers: dict[str, Entry] = field(default_factory=dict)
+    _sources: dict[str, str] = field(default_factory=dict)
+
+    def entries(self, episode: str) -> tuple[Entry, ...]:
+        """All entries that bear on an episode."""
+        if episode not in self._entries:
+            self._entries[episode] = found = self.store.entries(episode)
+            self._sources |= self.store.source_ids(episode)
+            for e in found:
+                self._by_id[e.id] = e
+                if e.replaces and e.action in REPLACING_ACTIONS:
+                    before = self._followers.get(e.replaces)
+                    self._followers[e.replaces] = e if before is None or before.seq < e.seq else before
+        return self._entries[episode]
+
+    def end(self, entry: Entry) -> Entry:
+        """The entry that counts now of those that an entry is followed by."""
+        self.entries(entry.episode)
+        while (later := self._followers.get(entry.id)) is not None:
+            entry = later
+            self.entries(entry.episode)
+        return entry
+
+    def brought_by_file(self, entry: Entry) -> bool:
+        """Whether what counts now in an entry's chain is of a file that is withdrawn, and no person's correction."""
+        end = self.end(entry)
+        if end.reason == WITHDRAWN_WHOLE and end.action is not Action.WITHDRAW:
+            value = next((b for b in self._before(end) if _value(b) == _value(end)), None)
+            return value is not None and self._of_gone(value)
+        return self._of_gone(end)
+
+    def inverse(self, end: Entry, by: str) -> NewEntry:
+        """The entry that brings back what stood before all that withdrawn files brought."""
+        before = next((b for b in self._before(end) if not self._of_gone(b)), None)
+        if before is None or before.action not in VALUE_ACTIONS:
+            return NewEntry(end.episode, end.channel, end.at, zone=end.zone, by=by, action=Action.WITHDRAW,
+                            replaces=end.id, reason=WITHDRAWN_WHOLE)  # fmt: skip
+        action = Action.CORRECT if before.episode == end.episode else Action.MOVE
+        return replace(as_new(before), by=by, action=action, replaces=end.id, reason=WITHDRAWN_WHOLE)
+
+    def _before(self, entry: Entry) -> Iterable[Entry]:
+        """What an entry's chain held before it, the newest first, without what withdrawals put there."""
+        while (before := self._by_id.get(entry.replaces)) is not None:
+            if before.reason != WITHDRAWN_WHOLE:
+                yield before
+            entry = before
+
+    def _of_gone(self, entry: Entry) -> bool:
+        self.entries(entry.episode)
+        return self._sources.get(entry.id) in self.gone and entry.reason != WITHDRAWN_WHOLE
+
+
+def _value(e: Entry) -> tuple[Instant, float | None, str | None, str]:
+    return e.at, e.number, e.words, e.raw
 
 
 def as_new(e: Entry) -> NewEntry:
@@ -73,18 +137,5 @@ def as_new(e: Entry) -> NewEntry:
 
 
 def _mask(span: SampleSpan, source_id: str, by: str) -> NewEntry:
-    return NewEntry(span.episode, span.channel, span.start, float(span.end), by=by, action=Action.MASK, reason=WHOLE,
-                    source=source_id)  # fmt: skip
-
-
-def _under(store: Store, span: SampleSpan, source: TakenSource) -> list[DeviceSamples]:
-    """The samples that the file had hidden: those known before it, where nothing later lies over them."""
-    found = store.samples(span.episode, head=source.first_seq - 1, channel=span.channel)
-    out = []
-    for block in found:
-        keep = (block.t >= span.start) & (block.t <= span.end)
-        for later in store.later_spans(span, source.last_seq):
-            keep &= (block.t < later.start) | (block.t > later.end)
-        if keep.any():
-            out.append(replace(block, t=np.ascontiguousarray(block.t[keep]), v=block.v[keep]))
-    return out
+    return NewEntry(span.episode, span.channel, span.start, float(span.end), by=by, action=Action.MASK,
+                    reason=WITHDRAWN_WHOLE, source=source_id)  # fmt: skip

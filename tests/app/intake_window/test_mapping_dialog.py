@@ -10,6 +10,7 @@ from PySide6.QtWidgets import QApplication, QComboBox
 from app.cli import main
 from app.dialogs.intake import IntakeDialog
 from app.intake_window.mapping_dialog import MappingDialog
+from storage.intake.writing import Writing
 from storage.store import Store
 from tests.support.hl7_messages import gas, message
 from tests.support.open_window import make_store, open_window, settled, until
@@ -230,3 +231,63 @@ def test_the_command_line_reads_by_the_mapping_that_the_window_kept(qtbot, windo
         found = [(e.channel, e.at, e.raw, e.number) for e in opened.source_entries(source.id)]
     assert sorted(map(str, found)) == sorted(map(str, shown))
     assert source.facts["mapping"] == "analyser ward 4"
+
+
+def type_into(qtbot, box: QComboBox, text: str) -> None:
+    """Type over what a box holds and leave it, as a person does."""
+    line = box.lineEdit()
+    line.setFocus()
+    line.selectAll()
+    qtbot.keyClicks(line, text)
+    line.editingFinished.emit()
+
+
+def test_a_delimiter_is_typed_kept_and_known_again_by_the_command_line_alike(qtbot, window, tmp_path, capsys):
+    path = tmp_path / "odd.csv"
+    path.write_bytes("Ward;4;x\nTime^pH^Remark\n2026-03-28 01:10^7.31^sp\u00e4t; he said\n".encode("cp437"))
+    dialog = open_mapping(qtbot, window, path)
+    type_into(qtbot, dialog.written.mark, "ab")
+    assert "'ab'" in dialog.written.about.text(), "why it is not taken"
+    assert dialog.written.mark.currentText() == "semicolon"
+    type_into(qtbot, dialog.written.mark, "^")
+    until(qtbot, lambda: dialog.mapping.header == ("Time", "pH", "Remark"))
+    choose(dialog.written.encoding, "cp437")
+    until(qtbot, lambda: dialog.looked.table.dialect.encoding == "cp437")
+    assert dialog.columns.item(2, 1).text() == "sp\u00e4t; he said"
+    assert dialog.written.mark.currentText() == "^"
+    choose(dialog.answers.episode, "bed-7")
+    dialog.name.setText("odd one")
+    dialog.go.click()
+    intake = visible(window, IntakeDialog)
+    until(qtbot, lambda: intake.intake is not None)
+    intake.reject()
+    settled(qtbot, window)
+    again = open_mapping(qtbot, window, path)
+    assert again.kept.currentData() == "odd one"
+    assert again.mapping.header == ("Time", "pH", "Remark")
+    choose(again.kept, "")
+    until(qtbot, lambda: again.mapping.header != ("Time", "pH", "Remark"))
+    assert again.written.said == Writing(), "as proposed is as found"
+    choose(again.kept, "odd one")
+    until(qtbot, lambda: again.mapping.header == ("Time", "pH", "Remark"))
+    again.reject()
+    settled(qtbot, window)
+    store = ["--store", str(tmp_path / "ward.luffmark"), "--by", "AB"]
+    assert main([*store, "intake", str(path), "--episode", "bed-7"]) == 0
+    with Store.open(tmp_path / "ward.luffmark") as opened:
+        source = opened.sources()[-1]
+        assert [e.words for e in opened.source_entries(source.id) if e.channel == "note"] == ["sp\u00e4t; he said"]
+    assert (source.facts["encoding"], source.facts["delimiter"], source.facts["header_line"]) == ("cp437", "^", 2)
+    assert main([*store, "intake", str(path), "--episode", "bed-7", "--delimiter", "ab"]) == 1
+    assert "one character" in capsys.readouterr().err
+    assert main([*store, "mapping", "propose", str(path), "--delimiter", "^"]) == 0
+    assert '"delimiter": "^"' in capsys.readouterr().out
+
+
+def test_leaving_the_field_of_the_delimiter_says_nothing(qtbot, window, gases):
+    dialog = open_mapping(qtbot, window, gases)
+    looked = dialog.looked
+    dialog.written.mark.lineEdit().editingFinished.emit()
+    assert dialog.written.said == Writing()
+    assert dialog.looked is looked
+    dialog.reject()

@@ -19,6 +19,7 @@ from storage.intake.findings import Intake
 from storage.intake.mapping import ColumnUse, Mapping, TimeUse
 from storage.intake.table_reading import read_table
 from storage.intake.table_rows import Answers
+from storage.intake.writing import Writing
 from storage.store import Store
 from tests.storage.conftest import NOW
 from tests.support.hl7_messages import gas, message
@@ -287,7 +288,7 @@ def test_a_formula_in_a_text_column_is_refused(tmp_path: Path, formula: str) -> 
 def test_a_wrong_encoding_named_by_a_person_is_refused_by_line(tmp_path: Path, store: Store) -> None:
     path = tmp_path / "a.csv"
     path.write_bytes("time,pH,note\n2026-03-28 00:30,7.4,müde\n".encode("cp1252"))
-    intake = operations.read(store, "AB", NOW, ReadRequest(path, MAPPING, episode="E1", encoding="utf-8")).value
+    intake = operations.read(store, "AB", NOW, ReadRequest(path, MAPPING, episode="E1", said=Writing("utf-8"))).value
     assert [(r.line, r.message.key) for r in intake.refusals] == [(2, "file.encoding")]
 
 

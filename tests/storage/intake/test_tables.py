@@ -23,15 +23,16 @@ from storage.intake.mapping import (
     LongUse,
     Mapping,
     TimeUse,
+    fits,
     from_text,
     keep_mapping,
     kept_mapping,
     kept_mappings,
     open_questions,
-    recognised,
     to_text,
 )
 from storage.intake.proposals import propose
+from storage.intake.recognising import recognise
 from storage.intake.table import open_table
 from storage.intake.table_preview import preview
 from storage.intake.table_reading import read_table
@@ -243,8 +244,9 @@ def test_a_mapping_is_kept_and_recognised_whatever_the_order_of_columns(write: W
     keep_mapping(store, mapping)
     assert kept_mapping(store, "analyser") == mapping
     turned = ("Notiz", "ph", "PCO2", "pO2 (kPa)", "Probe  am")
-    assert recognised(turned, kept_mappings(store)) == mapping
-    assert recognised(("pH",), kept_mappings(store)) is None
+    assert fits(kept_mappings(store)["analyser"], turned)
+    assert not fits(mapping, ("pH",))
+    assert recognise(path, kept_mappings(store)).mapping == mapping
     with pytest.raises(RecordError) as refused:
         kept_mapping(store, "other")
     assert refused.value.message.values["accepted"] == "analyser"

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+from itertools import count, permutations
 from pathlib import Path
 
 import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
 
+from core.record.entries import Action, NewEntry
 from core.record.instant import MINUTE, iso
 from core.record.knowledge import standing
 from core.record.message import RecordError
@@ -18,6 +22,7 @@ from tests.storage.conftest import NOW
 from tests.storage.intake.test_device_tables import START, read, trend
 from tests.support.hl7_messages import gas, message, obx
 
+NUMBERS = count()
 KNOWN = Said(episodes={"WARD-7|0042": "E1"})
 
 
@@ -67,14 +72,82 @@ def test_results_go_and_their_corrections_give_back_the_value_before(tmp_path: P
     withdraw_source(store, second, by="CD", now=NOW)
     assert numbers(store, "ph") == [7.31]
     made = withdraw_source(store, first, by="CD", now=NOW)
-    assert numbers(store, "paco2") == []
-    assert made.kept == 1, "pH was corrected since, and its correction withdrawn with its own file"
+    assert numbers(store, "paco2") == numbers(store, "ph") == [], "the correction went with its own file"
+    assert (made.kept, made.emptied) == (0, ("E1",))
     again = read_hl7(tmp_path / "a.hl7", now=NOW, said=KNOWN, existing=store)
     take_in(store, again, by="AB", now=NOW)
     assert len(numbers(store, "paco2")) == 1
+    assert numbers(store, "ph") == [7.31]
     repeated = read_hl7(tmp_path / "a.hl7", now=NOW, said=KNOWN, existing=store)
     assert repeated.entries == ()
     assert store.verify() == ()
+
+
+@pytest.mark.parametrize("order", list(permutations(range(3))))
+def test_in_whatever_order_results_are_withdrawn_nothing_of_them_comes_back(
+    tmp_path: Path, store: Store, order: tuple[int, ...]
+) -> None:
+    values = ("7.31", "7.25", "7.28")
+    ids = [take_hl7(store, tmp_path / "a.hl7", message(gas()))]
+    for hour, value in enumerate(values[1:], 1):
+        text = message([obx("ph", value, status="C")], sent=f"20260328{hour:02d}30+0000")
+        ids.append(take_hl7(store, tmp_path / "b.hl7", text))
+    left = list(range(3))
+    for i in order:
+        withdraw_source(store, ids[i], by="CD", now=NOW)
+        left.remove(i)
+        assert numbers(store, "ph") == [float(values[k]) for k in left[-1:]]
+        with pytest.raises(RecordError):
+            withdraw_source(store, ids[i], by="CD", now=NOW)
+    assert store.episode("E1").is_empty
+    assert store.verify() == ()
+
+
+def test_what_a_person_corrected_stays_and_what_a_file_deleted_comes_back(tmp_path: Path, store: Store) -> None:
+    first = take_hl7(store, tmp_path / "a.hl7", message(gas()))
+    deleted = take_hl7(store, tmp_path / "b.hl7", message([obx("ph", "", status="D")], sent="202603280130+0000"))
+    assert numbers(store, "ph") == []
+    withdraw_source(store, deleted, by="CD", now=NOW)
+    assert numbers(store, "ph") == [7.31]
+    old = next(s.entry for s in standing(store.entries("E1")) if s.entry.channel == "ph")
+    typed = NewEntry(
+        "E1", "ph", old.at, 7.3, raw="7.30", by="CD", action=Action.CORRECT, replaces=old.id, reason="typo"
+    )
+    store.append([typed], by="CD", operation="correct", now=NOW)
+    made = withdraw_source(store, first, by="CD", now=NOW)
+    assert (numbers(store, "ph"), made.kept, made.emptied) == ([7.3], 1, ())
+
+
+@settings(max_examples=25, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+@given(spans=st.lists(st.tuples(st.integers(0, 200), st.integers(1, 150)), min_size=1, max_size=4), data=st.data())
+def test_in_whatever_order_trends_are_withdrawn_the_others_stand_as_if_alone(
+    tmp_path: Path, spans: list[tuple[int, int]], data: st.DataObject
+) -> None:
+    folder = tmp_path / str(next(NUMBERS))
+    folder.mkdir()
+    with Store.create(folder / "a.luff", now=NOW) as store:
+        ids = []
+        for i, (first, length) in enumerate(spans):
+            intake = read(trend(folder / "a.csv", first, first + length, leak=20 + i), store)
+            take_in(store, intake, by="AB", now=NOW)
+            ids.append(intake.source.id)
+        left = list(range(len(spans)))
+        for i in data.draw(st.permutations(range(len(spans)))):
+            withdraw_source(store, ids[i], by="CD", now=NOW)
+            left.remove(i)
+            model = {START + m * MINUTE: 20.0 + k for k in left for m in range(spans[k][0], sum(spans[k]))}
+            found = store.samples("E1", channel="leak")
+            assert {int(t): float(v) for b in found for t, v in zip(b.t, b.v, strict=True)} == model
+        assert store.episode("E1").is_empty
+
+
+def test_samples_that_were_moved_since_go_with_their_file(tmp_path: Path, store: Store) -> None:
+    intake = read(trend(tmp_path / "a.csv", 0, 60))
+    take_in(store, intake, by="AB", now=NOW)
+    moved = NewEntry("E1", "leak", START, float(600 * MINUTE), by="AB", action=Action.SHIFT, reason="clock")
+    store.append([moved], by="AB", operation="samples moved", now=NOW)
+    withdraw_source(store, intake.source.id, by="CD", now=NOW)
+    assert store.samples("E1") == ()
 
 
 def test_sources_are_listed_with_what_they_brought(tmp_path: Path, store: Store) -> None:
