@@ -34,6 +34,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.off_support": "The gas of {gas_at:time} was taken off support: it is not used for a verdict.",
     "response.venous_only": "The gas of {gas_at:time} is venous: no verdict for arterial.",
     "response.by_spo2_alone": "The oxygen arm answers by SpO2 alone.",
+    "response.co2_not_active":
+        "No verdict: the baseline gas of {gas_at:time} shows no acute hypercapnia, so CO2 alone gives none, "
+        "and the oxygen arm cannot answer.",
     "response.compared":
         "{quantity:name} {before:q} to {after:q} ({change:q+}): "
         "{direction:pick up=up beyond;down=down beyond;inside noise=within} measurement error ({noise:qn}).",

@@ -212,6 +212,9 @@ def sure(verdict: str | None, base: GasFigure, gas: GasFigure) -> str | None:
 def verdict(co2: Arm, oxygen: Arm, co2_active: bool, of_oxygen_change: bool = False) -> str | None:
     """Both arms as one verdict (rules of judgement 3.4 and 3.5); None where the deciding arm cannot answer.
 
+    Where CO2 was no trouble at the baseline, a PaCO2 that falls makes nobody better: then oxygen answers or nothing
+    does. What warns (worse, mixed, over-correction) stands all the same.
+
     `of_oxygen_change`: the anchor is a change of FiO2 or flow. Then SpO2 answers unless CO2 moved, and CO2
     must be known where it is active (a patient at hypercapnic risk).
     """
@@ -221,6 +224,6 @@ def verdict(co2: Arm, oxygen: Arm, co2_active: bool, of_oxygen_change: bool = Fa
         return MIXED
     if of_oxygen_change and co2.verdict == NO_CHANGE:
         return oxygen.verdict
-    if co2_active or oxygen.verdict is None:
+    if co2_active or (oxygen.verdict is None and co2.verdict in (MIXED, OVER_CORRECTION)):
         return co2.verdict
     return oxygen.verdict

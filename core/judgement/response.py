@@ -30,6 +30,7 @@ from core.judgement.response_baseline import (
 from core.judgement.response_headline import Headline, headline
 from core.judgement.response_since import Earlier, StartBaseline, difference, since_start
 from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure, SinceStart, Step
+from core.judgement.stretches import stretch_around, stretch_before
 from core.judgement.vitals_near import Found, VitalsNear
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
@@ -79,7 +80,7 @@ class _Judge:
         for gas in self.arterial:
             if gas.off_support or (minute(gas.at) <= minute(first.first_at) and not first.running_before):
                 continue
-            seen = self._seen(first.first_at, start.gas, gas)
+            seen = self._seen(first, start.gas, gas)
             found[gas.at] = since_start(start, gas, earlier, seen, self.ctx.policy)
             earlier.add(gas)
         return found
@@ -169,7 +170,7 @@ class _Judge:
         reason = _unjudged(base, gas)
         if reason or base.gas is None:
             return replace(plain, why=(*reason, *why.doubts(base.gas, gas)))
-        seen = self._seen(anchor.first_at, base.gas, gas)
+        seen = self._seen(anchor, base.gas, gas)
         co2 = arms.co2_arm(base.gas, gas, self.ctx.policy)
         oxygen = arms.oxygen_arm(base.gas, gas, seen, self.ctx.policy, co2, by_spo2=anchor.oxygen_only)
         active = arms.acute_hypercapnia(base.gas, self.ctx.policy) or (anchor.oxygen_only and self.at_risk)
@@ -178,6 +179,8 @@ class _Judge:
         found = arms.verdict(co2, oxygen, active, anchor.oxygen_only)
         verdict = arms.sure(found, base.gas, gas)
         unsure = (why.in_doubt(base.gas, gas),) if verdict != found else ()
+        if found is None and co2.verdict is not None and not active:
+            unsure = (why.co2_not_active(base.gas),)
         return JudgedGas(
             gas.at, minutes, when, difference(base.gas.ph, gas.ph),
             difference(base.gas.paco2_mmHg, gas.paco2_mmHg),
@@ -219,35 +222,40 @@ class _Judge:
         high = bisect_left(steps, minute(before), key=lambda row: row[0])
         return tuple(step for _, i, step in steps[low:high] if i != index)
 
-    def _seen(self, first_at: Instant, base: GasFigure | None, gas: GasFigure) -> Oxygenation:
-        spo2_before, rr_before, given_before = self._before(first_at, base)
+    def _seen(self, anchor: Anchor, base: GasFigure | None, gas: GasFigure) -> Oxygenation:
+        spo2_before, rr_before, given_before = self._before(anchor, base)
         spo2_after, rr_after, given_after = self._after[gas.at]
         return Oxygenation(
             spo2_before, spo2_after, rr_before, rr_after, self.target.low, self.target.high, given_before, given_after
         )
 
-    def _before(self, first_at: Instant, base: GasFigure | None) -> tuple[Found | None, Found | None, bool]:
+    def _before(self, anchor: Anchor, base: GasFigure | None) -> tuple[Found | None, Found | None, bool]:
         """SpO2, rate and whether oxygen was given before an anchor: near the anchor, else near its baseline."""
-        vitals = self.vitals
-        before_at = first_at if base is None else max(first_at, base.at)
-        rate = vitals.rate(base.at, 0, before_at) if base is not None else None
-        spo2 = vitals.spo2(before_at, 0, before_at)
-        if spo2 is None and base is not None:
-            spo2 = vitals.spo2(base.at, 0, before_at)
-        return spo2, rate or vitals.rate(first_at, 0, first_at), self._oxygen_given(first_at - 1)
+        vitals, breaks = self.vitals, self.ctx.support.breaks
+        low, last = stretch_before(breaks, anchor.kind, anchor.first_at)
+        given = self._oxygen_given(anchor.first_at - 1)
+        if base is None:
+            return vitals.spo2(last, low, last), vitals.rate(last, low, last), given
+        base_low, base_high = stretch_around(breaks, base.at)
+        early = base.at > anchor.first_at
+        base_high = min(base_high, base.at if early else anchor.first_at)
+        spo2 = None if early else vitals.spo2(last, low, last)
+        rate = vitals.rate(base.at, base_low, base_high) or vitals.rate(last, low, last)
+        return spo2 or vitals.spo2(base.at, base_low, base_high), rate, given
 
     @cached_property
     def _after(self) -> dict[Instant, tuple[Found | None, Found | None, bool]]:
-        """SpO2, rate and whether oxygen was given at each gas, with no other anchor between."""
+        """SpO2, rate and whether oxygen was given at each gas, with no other anchor and no break between."""
         acting = [(a, until) for a, until in zip(self.anchors, self._untils, strict=True) if a.judges]
         starts = [minute(a.first_at) for a, _ in acting]
         out: dict[Instant, tuple[Found | None, Found | None, bool]] = {}
         for gas in self.arterial:
             i = bisect_left(starts, minute(gas.at)) - 1
-            low, high = 0, min(gas.at + 30 * MINUTE, self.ctx.as_of)
+            low, high = stretch_around(self.ctx.support.breaks, gas.at)
+            high = min(high, gas.at + 30 * MINUTE, self.ctx.as_of)
             if i >= 0:
                 anchor, until = acting[i]
-                low = anchor.at if gas.at > anchor.at else anchor.first_at
+                low = max(low, anchor.at if gas.at > anchor.at else anchor.first_at)
                 high = high if until is None else min(high, until)
             spo2, rate = (look(gas.at, low, high) for look in (self.vitals.spo2, self.vitals.rate))
             out[gas.at] = spo2, rate, self._oxygen_given(gas.at)
@@ -273,12 +281,13 @@ class _Judge:
         rules = self.ctx.policy.response
         opens = anchor.at + int(rules.window_from_min.value * MINUTE)
         closes = min(anchor.at + int(rules.window_to_min.value * MINUTE), self.ctx.as_of,
-                     until if until is not None else self.ctx.as_of)  # fmt: skip
+                     until if until is not None else self.ctx.as_of,
+                     stretch_around(self.ctx.support.breaks, anchor.at)[1])  # fmt: skip
         if closes < opens:
             return None
         after = _last(self.vitals, closes, opens)
         seen = Oxygenation(
-            self.vitals.spo2(anchor.first_at, 0, anchor.first_at), after, None, None, self.target.low,
+            self._before(anchor, None)[0], after, None, None, self.target.low,
             self.target.high, self._oxygen_given(anchor.first_at - 1), self._oxygen_given(anchor.at),
         )  # fmt: skip
         arm = arms.spo2_arm(seen, self.ctx.policy)

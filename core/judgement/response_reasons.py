@@ -26,6 +26,11 @@ def missing(quantity: str, side: str) -> Message:
     return Message("response.value_missing", {"quantity": quantity, "side": side})
 
 
+def co2_not_active(base: GasFigure) -> Message:
+    """No verdict: the oxygen arm cannot answer, and CO2 does not where the baseline was not acutely hypercapnic."""
+    return Message("response.co2_not_active", {"gas_at": base.at})
+
+
 def over_correction(gas: GasFigure, base: GasFigure) -> Message:
     """CO2 fell so far that the pH is now alkalotic."""
     values: Values = {"ph": gas.ph, "before": base.paco2_mmHg, "after": gas.paco2_mmHg}

@@ -8,7 +8,7 @@ from core.judgement import arms
 from core.judgement import response_reasons as why
 from core.judgement.arms import Oxygenation
 from core.judgement.policy import Policy
-from core.judgement.response_noise import direction, pf_noise
+from core.judgement.response_noise import direction, pf_noise, ph_noise
 from core.judgement.shapes import GasFigure, SinceStart
 from core.record.message import Message
 
@@ -62,9 +62,13 @@ def since_start(
         reasons["baseline"] = Message("response.reference", {"gas_at": base.at})
     co2 = arms.co2_arm(base, gas, policy, quiet=True)
     oxygen = arms.oxygen_arm(base, gas, seen, policy, co2)
-    told = arms.verdict(co2, oxygen, arms.acute_hypercapnia(base, policy))
+    active = arms.acute_hypercapnia(base, policy)
+    told = arms.verdict(co2, oxygen, active)
     found = arms.sure(told, base, gas)
-    said = (*((why.in_doubt(base, gas),) if found != told else ()), *co2.why, *oxygen.why)
+    first = (why.in_doubt(base, gas),) if found != told else ()
+    if told is None and co2.verdict is not None and not active:
+        first = (why.co2_not_active(base),)
+    said = (*first, *co2.why, *oxygen.why)
     if found is None and said:
         reasons["verdict"] = said[0]
     return SinceStart(
@@ -111,7 +115,8 @@ def _ph_lost(base: GasFigure | None, best: GasFigure | None, gas: GasFigure, pol
     """pH fell or PaCO2 rose from the best gas, and the gas is not where treatment wants it.
 
     A pH of 7.35 or above with a PaCO2 at or below 45 mmHg has arrived: coming down to it from an alkalosis, or a
-    little further within the normal, loses nothing. A PaCO2 that climbs within its limits is `paco2_rising`'s.
+    little further within the normal, loses nothing. A pH that fell to acidosis is lost though PaCO2 fell too. A PaCO2
+    that climbs within its limits is `paco2_rising`'s.
     """
     if best is None:
         return False
@@ -121,7 +126,9 @@ def _ph_lost(base: GasFigure | None, best: GasFigure | None, gas: GasFigure, pol
         return False
     if gas.ph >= policy.state.acidotic_below_ph.value and gas.hypercapnic is not True:
         return False if gas.hypercapnic is False else None
-    if arms.co2_arm(best, gas, policy, quiet=True).verdict == arms.WORSE:
+    acidotic = gas.ph < policy.state.acidotic_below_ph.value
+    fell = direction(gas.ph - (best.ph or 0.0), ph_noise(policy.noise)) == -1
+    if (acidotic and fell) or arms.co2_arm(best, gas, policy, quiet=True).verdict == arms.WORSE:
         return True
     return None if gas.paco2_mmHg is None and best.paco2_mmHg is not None else False
 
