@@ -17,8 +17,8 @@ from storage.reading_ledger import episode_entries
 _now = s.episode_now.c
 
 
-def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -> None:
-    """Bring the table up to date with a batch that was just taken, in the same transaction."""
+def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -> set[str]:
+    """Bring the table up to date with a batch that was just taken, in the same transaction; the episodes touched."""
     latest: dict[str, int] = {}
     for d in draft.entries:
         latest[d.entry.episode] = max(latest.get(d.entry.episode, d.entry.at), d.entry.at)
@@ -30,6 +30,7 @@ def note_batch(connection: sa.Connection, draft: DraftBatch, receipt: Receipt) -
     for episode in ends:
         ended = ended_at(connection, episode, receipt.last_seq)
         connection.execute(sa.update(s.episode_now).where(_now.episode_id == episode).values(ended_at=ended))
+    return latest.keys() | ends
 
 
 def _touched_ends(connection: sa.Connection, draft: DraftBatch) -> set[str]:

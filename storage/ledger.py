@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 import os
 from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
 from operator import itemgetter
 from typing import Any
 from uuid import uuid4
@@ -28,7 +29,16 @@ _MANY = 100
 Row = dict[str, Any]
 
 
-def append_batch(connection: sa.Connection, draft: DraftBatch, now: Instant) -> Receipt:
+@dataclass(frozen=True, slots=True)
+class Appended:
+    """A batch that the ledger took: its receipt, its header, and each row with its table and its digest, in order."""
+
+    receipt: Receipt
+    header: Row
+    rows: tuple[tuple[sa.Table, Row, str], ...]
+
+
+def append_batch(connection: sa.Connection, draft: DraftBatch, now: Instant) -> Appended:
     """Add a batch at the end of the ledger, inside the caller's write transaction.
 
     The recording time never steps back: behind the last one it is held, and the skew is noted.
@@ -40,14 +50,15 @@ def append_batch(connection: sa.Connection, draft: DraftBatch, now: Instant) -> 
     rows = _rows(connection, draft, first=1 if before is None else before["last_seq"] + 1)
     if not rows:
         raise refuse("batch.empty", operation=draft.operation, accepted="at least one row")
-    header = _header(draft, rows, before, now)
+    header, digests = _header(draft, rows, before, now)
     connection.execute(sa.insert(s.batch), header)
     for table in s.LEDGER_ROWS:
         if own := [row for t, row in rows if t is table]:
             _insert(connection, table, own)
     ids = tuple(row["id"] for t, row in rows if t is s.entry)
-    return Receipt(header["seq"], header["first_seq"], header["last_seq"], ids, header["recorded_at"],
-                   header["hash"], header["skew"])  # fmt: skip
+    receipt = Receipt(header["seq"], header["first_seq"], header["last_seq"], ids, header["recorded_at"],
+                      header["hash"], header["skew"])  # fmt: skip
+    return Appended(receipt, header, tuple((t, row, d) for (t, row), d in zip(rows, digests, strict=True)))
 
 
 def _insert(connection: sa.Connection, table: sa.Table, rows: list[Row]) -> None:
@@ -63,18 +74,22 @@ def _insert(connection: sa.Connection, table: sa.Table, rows: list[Row]) -> None
     connection.exec_driver_sql(str(statement), [in_order(row) for row in rows])
 
 
-def _header(draft: DraftBatch, rows: list[tuple[sa.Table, Row]], before: sa.RowMapping | None, now: Instant) -> Row:
+def _header(
+    draft: DraftBatch, rows: list[tuple[sa.Table, Row]], before: sa.RowMapping | None, now: Instant
+) -> tuple[Row, list[str]]:
+    """A batch's header, and the digest of each of its rows."""
     earliest = now if before is None else before["recorded_at"]
     number = 1 if before is None else before["seq"] + 1
     for _table, row in rows:
         row["batch_seq"] = number
+    digests = [row_digest(table.name, row) for table, row in rows]
     header: Row = {
         "seq": number,
         "id": str(uuid4()),
         "first_seq": rows[0][1]["seq"],
         "last_seq": rows[-1][1]["seq"],
         "prev_hash": GENESIS if before is None else before["hash"],
-        "digest": rows_digest(row_digest(table.name, row) for table, row in rows),
+        "digest": rows_digest(digests),
         "recorded_at": max(now, earliest),
         "skew": max(0, earliest - now),
         "by": draft.by,
@@ -83,7 +98,7 @@ def _header(draft: DraftBatch, rows: list[tuple[sa.Table, Row]], before: sa.RowM
         "engine": ENGINE,
     }
     header["hash"] = batch_hash(header)
-    return header
+    return header, digests
 
 
 def _rows(connection: sa.Connection, draft: DraftBatch, first: int) -> list[tuple[sa.Table, Row]]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from bisect import bisect_left
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -23,15 +23,30 @@ from storage.rules import WITHDRAWN_WHOLE
 
 _IN_LIMIT = 500
 _e, _b, _c = s.entry.c, s.batch.c, s.chunk.c
-_ENTRY_COLUMNS = (
+ENTRY_COLUMNS = (
     _e.episode_id, _e.channel, _e.at, _e.number, _e.words, _e.raw, _e.raw_unit, _e.decimals, _e.zone, _e.by,
     _e.note, _e.doubt, _e.action, _e.replaces, _e.reason, _e.source, _e.seq, _e.id, _b.recorded_at,
 )  # fmt: skip
-_SELECT_ENTRIES: sa.Select[Any] = sa.select(*_ENTRY_COLUMNS).join_from(s.entry, s.batch, _e.batch_seq == _b.seq)
+_SELECT_ENTRIES: sa.Select[Any] = sa.select(*ENTRY_COLUMNS).join_from(s.entry, s.batch, _e.batch_seq == _b.seq)
+
+
+ChunkRow = tuple[int, str, str, Instant, bytes, bytes]
+"""Sequence, channel, source, start, bytes and their SHA-256 of a block of device samples."""
+ReadChunks = Callable[[sa.Connection, str, int, str | None, tuple[Instant, Instant] | None], Iterator[ChunkRow]]
+LAID_ANEW = "withdrawal"
+"""The kind of source by which an older program did what is now seen by passing a withdrawn file over."""
 
 
 def _entry(row: sa.Row[Any]) -> Entry:
-    v: list[Any] = list(row)
+    return made_entry(list(row))
+
+
+def made_entry(v: list[Any]) -> Entry:
+    """An entry of the values of `ENTRY_COLUMNS`.
+
+    Raises:
+        StoreError: `store.damaged` where a value is of a kind that is never written.
+    """
     try:
         v[12] = Action(v[12])
         sound = type(v[2]) is int and type(v[18]) is int and (v[3] is None or type(v[3]) is float)
@@ -93,28 +108,38 @@ def _where_in(connection: sa.Connection, column: sa.ColumnElement[str], ids: Ite
     return out
 
 
+def chunk_rows(
+    connection: sa.Connection, episode: str, head: int, channel: str | None = None,
+    between: tuple[Instant, Instant] | None = None,
+) -> Iterator[ChunkRow]:  # fmt: skip
+    """The blocks of device samples of an episode as known at `head`, in order; `between` those that touch a span."""
+    query = sa.select(_c.seq, _c.channel, s.source.c.id, _c.t0, _c.blob, _c.sha).join_from(
+        s.chunk, s.source, _c.source_seq == s.source.c.seq
+    )
+    query = query.where((_c.episode_id == episode) & (_c.seq <= head) & (s.source.c.kind != LAID_ANEW))
+    if channel is not None:
+        query = query.where(_c.channel == channel)
+    if between is not None:
+        query = query.where((_c.t1 >= between[0]) & (_c.t0 <= between[1]))
+    for row in connection.execute(query.order_by(_c.seq)):
+        yield row[0], row[1], row[2], row[3], row[4], row[5]
+
+
 def episode_samples(
     connection: sa.Connection, episode: str, head: int, spans: Iterable[Entry], channel: str | None = None,
-    between: tuple[Instant, Instant] | None = None,
+    between: tuple[Instant, Instant] | None = None, rows_of: ReadChunks = chunk_rows,
 ) -> tuple[DeviceSamples, ...]:  # fmt: skip
     """The device samples of an episode as known at `head`, one block per channel.
 
     A later block wins where it overlaps an earlier one; mask and shift entries (`spans`, in order) act on what
     was recorded before them. A file that was withdrawn whole is passed over as if it had never been laid there.
     """
-    query = sa.select(_c.seq, _c.channel, s.source.c.id, _c.t0, _c.blob, _c.sha).join_from(
-        s.chunk, s.source, _c.source_seq == s.source.c.seq
-    )
-    not_laid_anew = s.source.c.kind != "withdrawal"  # so did an older program what is now seen by passing over
-    query = query.where((_c.episode_id == episode) & (_c.seq <= head) & not_laid_anew)
-    if channel is not None:
-        query = query.where(_c.channel == channel)
     waiting = list(spans)
     gone = {(span.channel, span.source) for span in waiting if _withdraws_whole(span)}
-    if between is not None and not any(span.action is Action.SHIFT for span in waiting):
-        query = query.where((_c.t1 >= between[0]) & (_c.t0 <= between[1]))
+    if any(span.action is Action.SHIFT for span in waiting):
+        between = None
     channels: dict[str, Pieces] = {}
-    for seq, key, source, t0, blob, sha in connection.execute(query.order_by(_c.seq)):
+    for seq, key, source, t0, blob, sha in rows_of(connection, episode, head, channel, between):
         while waiting and waiting[0].seq < seq:
             _apply(waiting.pop(0), channels)
         if (key, source) in gone:

@@ -20,7 +20,8 @@ from core.record.knowledge import standing
 from core.record.message import Message, refuse
 from core.record.samples import DeviceSamples
 from storage import episode_index as index
-from storage import erasure, keys, opening
+from storage import erasure, keys, opening, row_proofs
+from storage import proven_reading as proven
 from storage import reading_ledger as reading
 from storage import reading_sources as taken
 from storage import schema as s
@@ -38,8 +39,7 @@ from storage.draft_batch import (
 from storage.engine import BUSY_SECONDS, fold_journal
 from storage.errors import StoreError
 from storage.ledger import append_batch, replaced_entries
-from storage.people import PersonEvent
-from storage.person_events import person_events
+from storage.person_events import PersonEvent, person_events
 from storage.rules import Replaced, is_device_channel
 from storage.store_care import StoreCare
 
@@ -77,7 +77,10 @@ class Store(StoreCare):
         Raises:
             StoreError: it is missing, newer, damaged, busy, or the passphrase is wrong.
         """
-        return cls(Path(path), opening.open_store(Path(path), passphrase, read_only, busy_seconds))
+        store = cls(Path(path), opening.open_store(Path(path), passphrase, read_only, busy_seconds))
+        if not (store.read_only or store.is_encrypted):
+            store.complete_proofs()
+        return store
 
     def close(self) -> None:
         """Close the store; nothing waits to be saved."""
@@ -142,7 +145,7 @@ class Store(StoreCare):
 
     def _head(self) -> tuple[int, str]:
         with self._opened.database.read() as connection:
-            last = last_batch(connection)
+            last = last_batch(connection) if self.is_encrypted else row_proofs.checked_last(connection)
             return (0, GENESIS) if last is None else (int(last["last_seq"]), str(last["hash"]))
 
     def head_known_at(self, known_at: Instant) -> int:
@@ -150,7 +153,10 @@ class Store(StoreCare):
         b = s.batch.c  # recording times never step back, so the newest batch by then has the largest sequence
         query = sa.select(b.last_seq).where(b.recorded_at <= known_at).order_by(b.recorded_at.desc(), b.seq.desc())
         with self._opened.database.read() as connection:
-            return int(connection.execute(query.limit(1)).scalar() or 0)
+            head = int(connection.execute(query.limit(1)).scalar() or 0)
+            if not self.is_encrypted:
+                proven.check_known_at(connection, known_at, head)
+            return head
 
     def recorded_beside(self, at: Instant) -> tuple[Instant | None, Instant | None]:
         """The newest moment before `at` and the earliest after it at which anything was recorded."""
@@ -195,10 +201,16 @@ class Store(StoreCare):
             if unless is not None and unless(changes_between(connection, since)):
                 return receipts
             for draft, now in zip(drafts, times, strict=True):
-                receipt = append_batch(connection, draft, now)
-                index.note_batch(connection, draft, receipt)
-                receipts.append(receipt)
+                receipts.append(self._append(connection, draft, now))
         return receipts
+
+    def _append(self, connection: sa.Connection, draft: DraftBatch, now: Instant) -> Receipt:
+        """Add a batch with all that is derived from it."""
+        made = append_batch(connection, draft, now)
+        touched = index.note_batch(connection, draft, made.receipt)
+        if not self.is_encrypted:
+            row_proofs.note_batch(connection, made.header, made.rows, touched)
+        return made.receipt
 
     def record_event(
         self, event: str, *, person: str, now: Instant, detail: str = "", by: str | None = None
@@ -224,26 +236,31 @@ class Store(StoreCare):
             RecordError: `erasure.unknown_episode`, `erasure.no_reason`.
         """
         with self._opened.database.write() as connection:
+            held = self._held(connection)
             gone = erasure.erasures_of(connection, episode, reason)
             if documents_until is not None:
                 gone += erasure.erased_documents(connection, documents_until, reason)
                 erasure.remove_drafts(connection, documents_until)
             kept = erasure.kept_elsewhere(connection, episode)
             draft = DraftBatch(by, "erase", kept, erasures=gone)
-            receipt = append_batch(connection, draft, now)
-            index.note_batch(connection, draft, receipt)
+            receipt = self._append(connection, draft, now)
             erasure.remove(connection, gone, episode)
+            if held:
+                row_proofs.rebuild(connection)
         fold_journal(self._opened.database)
         return receipt
 
     def erase_documents(self, until: Instant, *, reason: str, by: str, now: Instant) -> int:
         """Remove documents and drafts kept up to a moment; digests stay in the chain. How many documents went."""
         with self._opened.database.write() as connection:
+            held = self._held(connection)
             gone = erasure.erased_documents(connection, until, reason)
             erasure.remove_drafts(connection, until)
             if gone:
-                append_batch(connection, DraftBatch(by, "erase", erasures=gone), now)
+                self._append(connection, DraftBatch(by, "erase", erasures=gone), now)
                 erasure.remove(connection, gone, None)
+                if held:
+                    row_proofs.rebuild(connection)
         fold_journal(self._opened.database)
         return len(gone)
 
@@ -252,7 +269,7 @@ class Store(StoreCare):
     def entries(self, episode: str, head: int | None = None) -> tuple[Entry, ...]:
         """All entries that bear on an episode up to a sequence, in order. What stands: `knowledge.standing`."""
         with self._opened.database.read() as connection:
-            return reading.episode_entries(connection, episode, _ALL if head is None else head)
+            return self._entries(connection, episode, _ALL if head is None else head)
 
     def samples(
         self, episode: str, head: int | None = None, channel: str | None = None,
@@ -264,20 +281,23 @@ class Store(StoreCare):
         """
         top = _ALL if head is None else head
         with self._opened.database.read() as connection:
-            spans = reading.spans_in_force(reading.episode_entries(connection, episode, top))
-            return reading.episode_samples(connection, episode, top, spans, channel, between)
+            spans = reading.spans_in_force(self._entries(connection, episode, top))
+            rows_of = self._rows_of(connection)
+            return reading.episode_samples(connection, episode, top, spans, channel, between, rows_of)
 
     def episode(self, key: str, head: int | None = None) -> Episode:
         """The episode as arrays, as known at a sequence."""
         top = _ALL if head is None else head
         with self._opened.database.read() as connection:
-            entries = reading.episode_entries(connection, key, top)
-            samples = reading.episode_samples(connection, key, top, reading.spans_in_force(entries))
+            entries, rows_of = self._entries(connection, key, top), self._rows_of(connection)
+            samples = reading.episode_samples(connection, key, top, reading.spans_in_force(entries), rows_of=rows_of)
         return build_episode(key, standing(entries), samples)
 
     def episode_keys(self, head: int | None = None) -> tuple[str, ...]:
         """Every episode that had been recorded by a sequence, in order of first recording."""
         with self._opened.database.read() as connection:
+            if self._held(connection):
+                proven.check_episodes(connection)
             return index.episode_keys(connection, _ALL if head is None else head)
 
     def open_episode_keys(self) -> tuple[str, ...]:
@@ -291,7 +311,10 @@ class Store(StoreCare):
         None that stood is missing; one whose end was changed after `head` may be among them.
         """
         with self._opened.database.read() as connection:
-            return index.standing_keys(connection, since, head)
+            found = index.standing_keys(connection, since, head)
+            if self._held(connection):
+                proven.check_standing(connection, since, head, found)
+            return found
 
     def has_episode(self, key: str) -> bool:
         """Whether anything is recorded of an episode."""

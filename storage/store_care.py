@@ -21,11 +21,6 @@ class StoreCare(StoreKept):
     """The part of an open store that cares for its file. `storage.store.Store` is the whole."""
 
     @property
-    def is_encrypted(self) -> bool:
-        """Whether the file is encrypted."""
-        return self._opened.key is not None
-
-    @property
     def read_only(self) -> bool:
         """Whether nothing can be written; `notices` say why where nobody asked for it."""
         return self._opened.database.read_only

@@ -4,23 +4,20 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from pathlib import Path
 
 import sqlalchemy as sa
 
 from core.record.instant import Instant
-from storage import documents, facts_kept, opening, restore_report, schema, settings_kept
+from storage import documents, facts_kept, proven_reading, restore_report, schema, settings_kept
 from storage.draft_batch import DraftBatch, DraftDocument, DraftEvent, DraftPolicy, Receipt
+from storage.store_proven import StoreProven
 
 _ALL = 2**62
 
 
 @dataclass(frozen=True)
-class StoreKept:
+class StoreKept(StoreProven):
     """The part of an open store that keeps texts and documents. `storage.store.Store` is the whole."""
-
-    path: Path
-    _opened: opening.Opened
 
     def append_drafts(self, drafts: Sequence[DraftBatch], times: Sequence[Instant]) -> list[Receipt]:
         """Add batches to the ledger."""
@@ -74,11 +71,15 @@ class StoreKept:
     def policy(self, head: int | None = None) -> tuple[str, str] | None:
         """The (hash, text) of the policy in force at a sequence, or None while the store has none."""
         with self._opened.database.read() as connection:
+            if self._held(connection):
+                proven_reading.check_policy(connection, _ALL if head is None else head)
             return documents.policy(connection, _ALL if head is None else head)
 
     def policies(self, head: int | None = None) -> tuple[documents.KeptPolicy, ...]:
         """Every policy that was put in force up to a sequence, the newest first."""
         with self._opened.database.read() as connection:
+            if self._held(connection):
+                proven_reading.check_policies(connection)
             return documents.policies(connection, _ALL if head is None else head)
 
     def put_policy(self, text: str, hash: str, by: str, now: Instant) -> Receipt:
@@ -97,6 +98,8 @@ class StoreKept:
     def documents(self) -> tuple[documents.DocumentFacts, ...]:
         """What documents are kept, in order."""
         with self._opened.database.read() as connection:
+            if self._held(connection):
+                proven_reading.check_documents(connection)
             return documents.listed(connection)
 
     def document(self, document_id: str) -> bytes:

@@ -12,7 +12,7 @@ import sqlalchemy as sa
 
 from core.record.entries import Action, NewEntry
 from core.record.message import Message
-from storage import episode_index, facts_kept, rules, settings_kept
+from storage import episode_index, facts_kept, row_proofs, rules, settings_kept
 from storage import schema as s
 from storage.chain import GENESIS, batch_hash, row_digest, rows_digest
 from storage.chunks import decode
@@ -40,7 +40,21 @@ def findings(database: Database, *, encrypted: bool, step: Callable[[], None] = 
         except StoreError as error:
             values = {"path": database.path.name, **error.message.values}
             found.append(Message("verify.unreadable", values))
-    return tuple(found)
+    return tuple(found or _proofs(database))
+
+
+def _proofs(database: Database) -> list[Message]:
+    """What is kept to prove rows as they are read, held against the ledger once that is known to be sound."""
+    if database.is_keyed:
+        return []
+    with database.read() as connection:
+        wrong = row_proofs.differs(connection)
+    return [] if wrong is None else [Message("verify.derived", {"table": "cache", "episode": wrong, "count": 1})]
+
+
+def chain_is_whole(connection: sa.Connection) -> bool:
+    """Whether every row of the ledger is as its chain says."""
+    return not _chain(connection, lambda: None)
 
 
 def _pages(connection: sa.Connection, *, encrypted: bool) -> list[Message]:

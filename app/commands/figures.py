@@ -9,6 +9,7 @@ from app.operations import figures as operations
 from app.words import sentence
 from core.figures.json_form import to_json
 from core.judgement.shapes import EpisodeFigures
+from storage.errors import StoreError
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
@@ -22,7 +23,10 @@ def run(context: Context, args: argparse.Namespace) -> int:
             found = (operations.of_episode(store, context.by, context.now(), one).value.figures,)
         else:
             ward = operations.WardRequest(as_of, args.as_known_at, everything=True)
-            found = operations.of_ward(store, context.by, context.now(), ward).value.figures
+            answer = operations.of_ward(store, context.by, context.now(), ward).value
+            if answer.unread:  # a list that lacks a patient would be taken for whole
+                raise StoreError(answer.unread[0])
+            found = answer.figures
     if context.json:
         value = {"episodes": [to_json(f, lambda m: sentence(m, reader)) for f in found]}
         context.answer("", value)

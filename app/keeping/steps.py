@@ -23,6 +23,8 @@ _DAMAGE: Final = (Step.RESTORE, Step.SALVAGE)
 _STEPS: Final[dict[str, tuple[Step, ...]]] = {
     "store.damaged": _DAMAGE,
     "store.damaged_chunk": _DAMAGE,
+    "store.episode_not_as_written": _DAMAGE,
+    "store.not_as_written": _DAMAGE,
     "store.disk_error": (Step.AGAIN, *_DAMAGE),
     "key.envelope_altered": (Step.KEY_FILE, Step.RESTORE),
     "key.envelope_missing": (Step.KEY_FILE, Step.RESTORE),

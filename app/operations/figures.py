@@ -16,12 +16,16 @@ from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
+from core.record.message import Message
+from storage.errors import StoreError
 
 if TYPE_CHECKING:
     from storage.store import Store
 
 RECENTLY_ENDED = 24 * HOUR
 """Episodes that ended this long before the moment still stand on the ward."""
+OF_ONE_EPISODE = frozenset({"store.episode_not_as_written", "store.damaged_chunk"})
+"""Damage that is found in the record of one episode and says nothing of others."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,11 +61,16 @@ class EpisodeAnswer:
 @dataclass(frozen=True, slots=True)
 class WardAnswer:
     """The episodes of a ward in order of concern, whom to see first foremost, and the policy they were judged by:
-    the one in force as known at the moment asked for."""
+    the one in force as known at the moment asked for.
+
+    `unread`: what is wrong with episodes of a damaged store of which nothing can be told. Who shows the ward says so:
+    the others are not hidden for one.
+    """
 
     as_of: Instant
     episodes: tuple[EpisodeAnswer, ...]
     policy: Policy
+    unread: tuple[Message, ...] = ()
 
     @property
     def figures(self) -> tuple[EpisodeFigures, ...]:
@@ -86,17 +95,24 @@ def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outco
     head = store.head()
     policy = in_force(store, _head_for(store, request.as_known_at))
     keys, stages = _keys(store, request), _stages(store, request.as_known_at)
-    answers = []
+    answers: list[EpisodeAnswer] = []
+    unread: list[Message] = []
     for number, key in enumerate(keys):
         report(number, len(keys))
-        record = load(store, key, request.as_known_at)
+        try:
+            record = load(store, key, request.as_known_at)
+        except StoreError as error:
+            if error.message.key not in OF_ONE_EPISODE:
+                raise
+            unread.append(error.message)
+            continue
         if not _has_begun(record, request):
             continue
         made = episode_figures(record, request.as_of, policy, stages)
         if _stands(made, request):
             answers.append(EpisodeAnswer(record, made))
     answers.sort(key=lambda a: concern_order(a.figures))
-    return Outcome(WardAnswer(request.as_of, tuple(answers), policy), head)
+    return Outcome(WardAnswer(request.as_of, tuple(answers), policy, tuple(unread)), head)
 
 
 def concern_order(figures: EpisodeFigures) -> tuple[int, float, str]:

@@ -90,13 +90,15 @@ def takes_writing(store: Store, who: str, now: Instant, request: None) -> Outcom
 
 
 def check_if_quick(store: Store, who: str, now: Instant, request: None) -> Outcome[tuple[Message, ...]]:
-    """What is wrong with a plain store that is checked in a second or two, before figures of it are relied on.
+    """What is wrong with a plain store, before figures of it are relied on, where that is checked in a second or two.
 
-    An encrypted one proves every page as it is read. A plain one of years is checked by `verify`, not here.
+    An encrypted store proves every page as it is read, a plain one every row that a figure rests on; so in one of
+    years the rest waits for `verify`. One of an older program proves nothing until it was opened for writing: it is
+    checked whole, however long that takes.
     """
     head = store.head()
-    quick = not store.is_encrypted and head <= QUICK_ROWS
-    return Outcome(store.verify() if quick else (), head)
+    needed = not store.is_encrypted and (head <= QUICK_ROWS or not store.proves_rows)
+    return Outcome(store.verify() if needed else (), head)
 
 
 def verify(store: Store, who: str, now: Instant, request: str | None) -> Outcome[tuple[Message, ...]]:

@@ -8,6 +8,7 @@ from app.keeping.preferences import Preferences
 from app.operations import figures as figure_operations
 from app.operations.figures import EpisodeAnswer, WardAnswer, WardRequest
 from app.operations.outcome import Outcome
+from app.session.failure import Failure
 from app.session.model import SessionModel
 from app.session.shift import shift_of
 from app.session.state import Changed, What
@@ -94,6 +95,8 @@ class WardFeed(QObject):
             for key, a in self._answers.items()
         }
         self.refreshed.emit(self.content())
+        if answer.unread:
+            self._model.runner.troubled.emit(Failure(answer.unread[0], "ward figures"))
 
     def content(self) -> WardContent:
         """What the ward view shows now."""

@@ -94,6 +94,10 @@ TEMPLATES: Final[dict[str, str]] = {
     "restore.not_checked": "{path} is encrypted and no passphrase was given: its key file is whole and its length is "
         "right; its pages, its chain and its rules were not checked, and nothing was compared with the old store. "
         "Check it once it is open (Store, Check this store).",
+    "store.episode_not_as_written": "What is kept of {episode} is not what was written, so no figure is given of it. "
+        "Check the store, restore a backup, or save what can be read.",
+    "store.not_as_written": "What the store keeps is not what was written, so no figure is given that rests on it. "
+        "Check the store, restore a backup, or save what can be read.",
     "store.damaged_chunk": "A block of device samples is damaged. Run verify, and restore a backup.",
     "store.disk_error": "The disk failed while {path} was used: {detail}.",
     "store.disk_full": "The disk is full: nothing was recorded in {path}. Make room and try again.",

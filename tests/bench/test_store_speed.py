@@ -9,6 +9,7 @@ import shutil
 import subprocess
 import sys
 from collections.abc import Callable
+from dataclasses import fields
 from pathlib import Path
 from statistics import median
 from time import perf_counter
@@ -20,6 +21,8 @@ from app.operations import episode_shelf
 from app.operations import figures as figure_operations
 from app.operations import flag as flag_operations
 from app.operations import store as store_operations
+from core.figures.episode_figures import episode_figures
+from core.judgement.policy import shipped_policy
 from core.record.entries import NewEntry
 from core.record.instant import DAY, HOUR, MINUTE, SECOND
 from core.record.samples import DeviceSamples
@@ -27,6 +30,7 @@ from storage.draft_batch import DraftBatch, DraftEntry
 from storage.keys import Cost
 from storage.store import Store
 from tests.support.bare_insert import NOW, bare_insert, bare_table, entry, store_insert
+from tests.support.long_episode import END, long_entries, long_samples
 
 pytestmark = pytest.mark.bench
 SECRET = "correct horse ward 7"
@@ -219,3 +223,49 @@ def test_six_channels_of_72_hours_at_1_hz(
     with capsys.disabled():
         print(f"\n6 channels x 72 h at 1 Hz: decoded in {seconds * 1e3:.0f} ms")
     assert seconds <= 0.1
+
+
+def test_figures_of_rows_that_are_held_against_what_was_written(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """A plain store proves each row that a figure rests on: what that costs of the first figures of 72 h (500 values
+    logged one by one, six channels by the minute), and that it costs the same beside 10,000 episodes."""
+    few, many = (_with_a_long_episode(tmp_path / f"{n}.luff", n) for n in (10, 10_000))
+    held = Store._held
+    policy = shipped_policy()
+
+    def read(store: Store) -> None:
+        store.episode("LONG")
+
+    def figures(store: Store) -> None:
+        episode_figures(store.episode("LONG"), END, policy)
+
+    def unheld(store: Store, what: Callable[[Store], None]) -> None:
+        monkeypatch.setattr(Store, "_held", lambda _self, _c: False)
+        what(store)
+        monkeypatch.setattr(Store, "_held", held)
+
+    bare_read, plain_read, bare, plain, beside_many = interleaved(
+        15, lambda _i: unheld(few, read), lambda _i: read(few), lambda _i: unheld(few, figures),
+        lambda _i: figures(few), lambda _i: figures(many),
+    )  # fmt: skip
+    for store in (few, many):
+        store.close()
+    with capsys.disabled():
+        print(f"\nrows held: reading {plain_read * 1e3:.1f} ms against {bare_read * 1e3:.1f}, figures "
+              f"{plain * 1e3:.1f} against {bare * 1e3:.1f}, ratio {plain / bare:.2f}; beside 10,000 episodes "
+              f"{beside_many * 1e3:.1f}, ratio {beside_many / plain:.2f}")  # fmt: skip
+    assert plain <= 1.5 * bare
+    assert beside_many <= 1.3 * plain
+
+
+def _with_a_long_episode(path: Path, others: int) -> Store:
+    store = Store.create(path, now=NOW)
+    drafts = [DraftBatch("AB", "log", (DraftEntry(entry(0, f"E{i}")),)) for i in range(others)]
+    names = {f.name for f in fields(NewEntry)}
+    for one in long_entries():
+        new = NewEntry(**{name: getattr(one, name) for name in names})
+        drafts.append(DraftBatch("AB", "log", (DraftEntry(new),)))
+    store.append_drafts(drafts, [NOW + i for i in range(len(drafts))])
+    store.append([], by="AB", operation="intake", now=NOW + DAY, samples=long_samples())
+    return store
