@@ -9,9 +9,10 @@ from PySide6.QtWidgets import QApplication, QFrame, QLabel, QVBoxLayout, QWidget
 from app.explain.fact import Fact, heading
 from app.explain.figures import explain_row
 from app.figures.rows import FigureGroup, FigureRow
-from app.look.formats import since
+from app.look.formats import opened
 from app.look.theme import Theme
 from app.telling.phrases import translate
+from app.telling.taken import when_words
 from app.words import Reader
 from core.record.instant import Instant
 
@@ -117,7 +118,8 @@ class FigureFact(Fact):
     """One figure: its name, value with unit, doubt, age and what goes with it; F2 explains it."""
 
     def __init__(self, theme: Theme, row: FigureRow, said: str, reader: Reader, now: Instant) -> None:
-        age = [] if row.at is None else [f"{reader.time(row.at)}, {since(row.at, now)}"]
+        told = when_words(row.at, row.median_of, now, reader)
+        age = [opened(told)] if told else []
         notes = [f"{note}." for note in row.notes if note != said]
         super().__init__(
             theme,

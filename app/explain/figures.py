@@ -8,7 +8,8 @@ from app.explain.explanation import Explanation, whole
 from app.figures.groups import figure_groups
 from app.figures.rows import FigureRow
 from app.figures.values import input_name, input_text
-from app.look.formats import since, trimmed
+from app.look.formats import opened, trimmed
+from app.telling.taken import when_words
 from app.words import Reader, sentence
 from core.figures.catalogue import figure
 from core.figures.catalogue_entry import FigureEntry
@@ -30,11 +31,11 @@ def explain_row(row: FigureRow, reader: Reader, now: Instant) -> Explanation:
     return Explanation(
         title=f"{row.name}: {value}",
         rules=row.lines,
-        inputs=tuple((i.name, i.value, _moment(i.at, reader)) for i in row.inputs),
+        inputs=tuple((i.name, i.value, when_words(i.at, i.median_of, None, reader)) for i in row.inputs),
         notes=tuple(dict.fromkeys(whole(n) for n in notes)),
         source=reader.translate(entry.source),
         sure=entry.certainty,
-        when=_of_moment(row.at, now, reader),
+        when=opened(when_words(row.at, row.median_of, now, reader)),
         doubt=whole(row.doubt),
         reason=whole(row.why),
         formula=reader.translate(entry.formula),
@@ -56,7 +57,7 @@ def score_in(f: EpisodeFigures, key: str) -> ScoreFigure:
     score = f.scores[key]
     if key != "rox" or score.inputs:
         return score
-    return replace(score, inputs={k: ScoreInput(i.value, i.at) for k, i in f.rox.inputs.items()})
+    return replace(score, inputs={k: ScoreInput(i.value, i.at, None, i.median_of) for k, i in f.rox.inputs.items()})
 
 
 def explain_score(key: str, score: ScoreFigure, reader: Reader, now: Instant | None = None) -> Explanation:
@@ -72,7 +73,7 @@ def explain_score(key: str, score: ScoreFigure, reader: Reader, now: Instant | N
         notes=tuple(dict.fromkeys(whole(n) for n in notes)),
         source=reader.translate(entry.source),
         sure=entry.certainty,
-        when=_of_moment(score.at, score.at if now is None else now, reader),
+        when=when_words(score.at, None, score.at if now is None else now, reader),
         formula=reader.translate(entry.formula),
         population=_population(score, reader),
     )
@@ -100,7 +101,7 @@ def _score_input(key: str, name: str, part: ScoreInput, reader: Reader) -> tuple
         if key not in CLASSES and part.points == 1:
             word = "{count} point"
         value = f"{value}, {tr(word).format(count=trimmed(part.points))}"
-    return input_name(name, reader), value, _moment(part.at, reader)
+    return input_name(name, reader), value, when_words(part.at, part.median_of, None, reader)
 
 
 def _population(score: ScoreFigure, reader: Reader) -> str:
@@ -123,11 +124,3 @@ def _units(row: FigureRow, entry: FigureEntry, reader: Reader) -> list[str]:
     """Formulas are printed in mmHg: who reads kPa has to know."""
     has_pressure = entry.unit == "mmHg" or any("(" in i.value and "mmHg)" in i.value for i in row.inputs)
     return [reader.translate(_IN_MMHG)] if reader.gas_unit == "kPa" and has_pressure else []
-
-
-def _of_moment(at: Instant | None, now: Instant | None, reader: Reader) -> str:
-    return "" if at is None or now is None else f"{reader.time(at)}, {since(at, now)}"
-
-
-def _moment(at: Instant | None, reader: Reader) -> str:
-    return "" if at is None else reader.time(at)

@@ -212,6 +212,9 @@ def _volume_word(f: EpisodeFigures, make: RowMaker) -> str:
     parts = [value_text(x.key, x.value, make.reader) for x in figures if x.value is not None]
     if not parts:
         return make.tr("no tidal volume")
+    given = v.tidal_volume_mL.inputs.get("vte")
+    if given is not None and given.median_of is not None:
+        parts[0] = make.tr("median {value}").format(value=parts[0])
     doubted = v.tidal_volume_mL.doubt is not None
     return ", ".join([*parts, make.tr("doubtful")] if doubted else parts)
 
@@ -222,5 +225,7 @@ def _mask_word(f: EpisodeFigures, make: RowMaker) -> str:
         parts.append(make.tr("{hours} on it").format(hours=formats.hours(f.support.hours_on_mask)))
     if f.leak.latest_L_per_min is not None:
         leak = formats.quantity("leak", f.leak.latest_L_per_min)
+        if f.leak.latest_median_of is not None:
+            leak = make.tr("median {value}").format(value=leak)
         parts.append(f"{input_name('leak', make.reader).lower()} {leak}")
     return ", ".join(parts)

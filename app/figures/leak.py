@@ -61,7 +61,7 @@ def leak_trend(leak: LeakFigure, make: RowMaker) -> FigureRow:
     why = "" if value else make.say(leak.reasons.get("slope_L_per_min_per_h")) or make.tr("Too few values")
     band = "" if low is None or high is None or not value else slope_band("leak", low, high, make.reader)
     notes = [band, make.say(leak.reasons.get("slope_low")) if value else ""]
-    latest = RowInput(make.tr("Newest value"), _amount(leak.latest_L_per_min), leak.latest_at)
+    latest = _newest(leak, make)
     inputs = (latest,) if leak.latest_at is not None else ()
     return FigureRow("slope", make.tr("Leak"), value, leak.latest_at if value else None, "",
                      tuple(n for n in notes if n), why, inputs)  # fmt: skip
@@ -72,10 +72,15 @@ def _median(leak: LeakFigure, make: RowMaker) -> FigureRow:
     why = "" if value else make.say(leak.reasons.get("median_L_per_min")) or make.tr("Not known")
     meant = leak.definition if leak.definition else make.tr("meaning not said")
     notes = [make.tr("Leak as the device means it: {meant}").format(meant=make.tr(meant))] if value else []
-    latest = RowInput(make.tr("Newest value"), _amount(leak.latest_L_per_min), leak.latest_at)
+    latest = _newest(leak, make)
     inputs = (latest,) if leak.latest_at is not None else ()
     return FigureRow("leak_median", make.tr("Leak, median"), value, leak.latest_at if value else None,
-                     "", tuple(notes), why, inputs)  # fmt: skip
+                     "", tuple(notes), why, inputs, median_of=leak.median_of if value else None)  # fmt: skip
+
+
+def _newest(leak: LeakFigure, make: RowMaker) -> RowInput:
+    """The leak now, beside its middle over hours."""
+    return RowInput(make.tr("Newest"), _amount(leak.latest_L_per_min), leak.latest_at, leak.latest_median_of)
 
 
 def _limit(leak: LeakFigure, make: RowMaker) -> FigureRow:

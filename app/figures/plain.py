@@ -12,6 +12,7 @@ from app.telling.certainty import star_note
 from app.telling.finding_names import lever_name
 from app.telling.headline import headline, off_mask_word, state_now
 from app.telling.lever_words import lever_reasons, lever_standing
+from app.telling.taken import when_words
 from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
@@ -94,7 +95,7 @@ def _when(row: FigureRow, f: EpisodeFigures, lines: FigureLines) -> str:
     """The moment of a value and how long ago it was."""
     if row.at is None:
         return ""
-    return f" ({lines.reader.time(row.at)}, {formats.since(row.at, f.as_of)})"
+    return f" ({when_words(row.at, row.median_of, f.as_of, lines.reader)})"
 
 
 def _lowered(why: str) -> str:

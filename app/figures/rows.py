@@ -9,7 +9,7 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 
 from app.figures.values import input_name, input_text, value_text
-from app.look.formats import since
+from app.telling.taken import Span
 from app.words import Reader, sentence
 from core.figures.catalogue import CATALOGUE
 from core.judgement.derived import DerivedFigure, FigureInput
@@ -28,6 +28,7 @@ class RowInput:
     name: str
     value: str
     at: Instant | None = None
+    median_of: Span | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,7 +36,8 @@ class FigureRow:
     """One figure. `value` is empty where there is none; `why` says why then.
 
     `key` is its line in the catalogue. `doubt` is of this value; `notes` go with the figure always. A `wide` value
-    is a sentence. `lines` are reasoning that only the explanation shows.
+    is a sentence. `lines` are reasoning that only the explanation shows. `median_of`: the span of the device's
+    samples whose median it is, or is made from.
     """
 
     key: str
@@ -48,6 +50,7 @@ class FigureRow:
     inputs: tuple[RowInput, ...] = ()
     lines: tuple[str, ...] = ()
     wide: bool = False
+    median_of: Span | None = None
 
     @property
     def is_known(self) -> bool:
@@ -116,18 +119,17 @@ class RowMaker:
             why,
             self.inputs(figure.inputs),
             self._assumption(figure),
+            median_of=_span(figure),
         )
 
     def inputs(self, inputs: Mapping[str, FigureInput]) -> tuple[RowInput, ...]:
         """Inputs in words."""
         return tuple(
-            RowInput(input_name(key, self.reader), input_text(key, given.value, self.reader), given.at)
+            RowInput(
+                input_name(key, self.reader), input_text(key, given.value, self.reader), given.at, given.median_of
+            )
             for key, given in inputs.items()
         )
-
-    def when(self, at: Instant | None, now: Instant) -> str:
-        """A moment and how long ago it was; empty without one."""
-        return "" if at is None else f"{self.reader.time(at)}, {since(at, now)}"
 
     def _doubt(self, figure: DerivedFigure) -> str:
         found = [self.say(figure.doubt)] if figure.doubt is not None else []
@@ -162,6 +164,12 @@ def doubts_of(gases: Iterable[GasFigure], reader: Reader) -> dict[Instant, str]:
 def _gases(figure: DerivedFigure) -> tuple[Instant, ...]:
     """The moments of the gases that a figure was made from."""
     return tuple(dict.fromkeys(i.at for key, i in figure.inputs.items() if key in OF_A_GAS and i.at is not None))
+
+
+def _span(figure: DerivedFigure) -> Span | None:
+    """The samples whose median a figure of their last moment is, or is made from."""
+    spans = (i.median_of for i in figure.inputs.values() if i.median_of is not None)
+    return next((s for s in spans if s[1] == figure.at), None)
 
 
 def with_lines(row: FigureRow, lines: Iterable[str]) -> FigureRow:

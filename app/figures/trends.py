@@ -40,7 +40,7 @@ def _row(key: str, name: str, ratio: RatioFigure, make: RowMaker) -> FigureRow:
 def _inputs(key: str, ratio: RatioFigure, make: RowMaker) -> tuple[RowInput, ...]:
     made = []
     if ratio.latest is not None:
-        made.append(RowInput(make.tr("Newest value"), _value(key, ratio.latest, make), ratio.at))
+        made.append(RowInput(make.tr("Newest value"), _value(key, ratio.latest, make), ratio.at, ratio.median_of))
     if ratio.span_from is not None:
         points = make.tr("{count} points").format(count=ratio.n)
         made.append(RowInput(make.tr("Points since"), points, ratio.span_from))

@@ -17,8 +17,9 @@ _NO_NEED: Final = frozenset({
     "lever.oxygen_enough", "lever.spo2_in_range",
 })  # fmt: skip
 _NOT_KNOWN: Final = frozenset({
-    "lever.leak_definition_not_known", "lever.leak_not_known", "lever.mask_time_not_known", "lever.no_gas",
-    "lever.own_rate_not_known", "lever.pressures_not_known", "lever.spo2_not_known",
+    "lever.acidosis_not_known", "lever.leak_definition_not_known", "lever.leak_limit_not_known",
+    "lever.leak_not_known", "lever.mask_time_not_known", "lever.no_gas", "lever.own_rate_not_known",
+    "lever.pressures_not_known", "lever.spo2_not_known",
 })  # fmt: skip
 _LIMITS: Final = {
     "lever.review_ipap": "review_ipap_cmH2O", "lever.review_epap": "review_epap_cmH2O",
@@ -26,7 +27,7 @@ _LIMITS: Final = {
     "lever.port_not_cleared": "port_clears_from_cmH2O", "lever.little_mask_time": "mask_share_low",
     "lever.mask_time_enough": "mask_share_low", "lever.rate_in_reach": "rate_in_reach_per_min",
     "lever.rate_no_effect": "rate_in_reach_per_min", "lever.pf_low": "epap_pf_mmHg",
-    "lever.leak_over_limit": "leak", "lever.leak_within_limit": "leak",
+    "lever.leak_over_limit": "leak", "lever.leak_was_over_limit": "leak", "lever.leak_within_limit": "leak",
 }  # fmt: skip
 """Which number of the policy a reason rests on."""
 _AT_LIMIT: Final = frozenset({
@@ -65,7 +66,7 @@ def lever_sentence(message: Message, reader: Reader) -> str:
     """One reason in words; a limit of the policy that is to be confirmed locally says so.
 
     >>> lever_sentence(Message("lever.review_epap", {"epap": 8.0, "limit": 8.0}), Reader())
-    'EPAP 8 cmH2O: review before going past 8 [from memory].'
+    'EPAP 8 cmH2O: review before going past 8 cmH2O [from memory].'
     """
     text, sure = sentence(message, reader), _sure_of(message.key)
     return f"{text.rstrip('.')} [{reader.translate(sure)}]." if sure in UNCONFIRMED else text

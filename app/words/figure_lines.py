@@ -7,6 +7,7 @@ from dataclasses import dataclass, field, replace
 
 from app.look import formats
 from app.telling.presumed import presumed_word
+from app.telling.taken import taken_words
 from app.words import Reader, sentence
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
@@ -361,13 +362,13 @@ class FigureLines:
         """Leak: its median, what is meant by it, and time over the limit."""
         if leak.median_L_per_min is None:
             return self.why(self.tr("Leak"), leak.reasons, "median_L_per_min") or self.tr("Leak not recorded")
-        text = f"{self.tr('Leak')} {formats.fixed(leak.median_L_per_min, 0)} L/min ({self.tr('median')}"
-        text += f", {leak.definition})" if leak.definition else f", {self.tr('definition not known')})"
+        taken = taken_words(leak.median_of, leak.latest_at, self.reader)
+        meant = self.tr(leak.definition) if leak.definition else self.tr("what the device calls leak is not known")
+        text = f"{self.tr('Leak')} {formats.fixed(leak.median_L_per_min, 0)} L/min ({taken}; {meant})"
         if leak.minutes_over_limit is not None and leak.limit_L_per_min is not None:
-            text += (
-                f", {formats.minutes(leak.minutes_over_limit)} {self.tr('over')} "
-                f"{formats.fixed(leak.limit_L_per_min, 0)} L/min"
-            )
+            over = self.tr("in that time {length} over {limit} L/min")
+            length, limit = formats.minutes(leak.minutes_over_limit), formats.fixed(leak.limit_L_per_min, 0)
+            text += f"; {over.format(length=length, limit=limit)}"
         return text
 
     def sentences(self, messages: Iterable[Message]) -> str:

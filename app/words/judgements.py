@@ -116,57 +116,83 @@ EXPECTED: Final[dict[str, str]] = {
     "expected.within_band": "as expected",
 }  # fmt: skip
 
+_TAKEN = "[[ (median from {since:time} to {at:clock})]][[!since| (one reading at {at:time})]]"
+"""What a value of now is: a median of the device's samples over a span, or one reading of a moment."""
+_RATE = ("[[ (median from {since:time} to {at:clock})]]"
+         "[[!since| ({counted:pick yes=counted;no=one reading} at {at:time})]]")  # fmt: skip
+
 LEVERS: Final[dict[str, str]] = {
     "lever.acidosis": "pH {ph:2} with PaCO2 {paco2_mmHg:gas} at {at:time}.",
     "lever.event": "{channel:name}[[: {text}]] at {at:time}.",
     "lever.fio2_at_maximum": "FiO2 is at its highest.",
-    "lever.high_tidal_volume": "Tidal volume {vt_per_kg:1} mL/kg is above {limit:1} mL/kg already.",
-    "lever.hypercapnic_risk": "At hypercapnic risk: no higher than SpO2 {high:0} %.",
+    "lever.acidosis_not_known":
+        "Whether the gas of {at:time} is an acidosis with a high PaCO2 is not known: {missing:list} not reported.",
+    "lever.high_tidal_volume":
+        "Tidal volume {vt_per_kg:1} mL/kg" + _TAKEN + " is above {limit:1} mL/kg already.",
+    "lever.hypercapnic_risk": "At hypercapnic risk: SpO2 no higher than {high:0} %.",
     "lever.hypoxaemia": "EPAP may recruit lung.",
-    "lever.leak_definition_not_known": "What the device calls leak is not known[[ (now {leak:0} L/min)]].",
-    "lever.leak_first": "Leak first[[: {leak:0} L/min]].",
+    "lever.leak_definition_not_known":
+        "What the device calls leak is not known: {leak:0} L/min" + _TAKEN + " is judged by no limit.",
+    "lever.leak_first": "Leak first: {leak:0} L/min" + _TAKEN + ".",
+    "lever.leak_limit_not_known":
+        "Leak {leak:0} L/min" + _TAKEN + ": its limit is not known without the pressures.",
     "lever.leak_not_known": "Leak is not known.",
-    "lever.leak_over_limit":
-        "Leak {leak:0} L/min[[ (newest 15-min median or logged value, {at:time})]] "
-        "is over {limit:0} L/min.",
-    "lever.leak_within_limit":
-        "Leak {leak:0} L/min[[ (newest 15-min median or logged value, {at:time})]] "
-        "is within {limit:0} L/min.",
-    "lever.little_mask_time": "Only {hours:hours} of the last {of_hours:hours} on the mask.",
-    "lever.mask_time_enough": "Time on the mask is enough.",
+    "lever.leak_over_limit": "Leak {leak:0} L/min" + _TAKEN + " is over {limit:0} L/min.",
+    "lever.leak_was_over_limit":
+        "Leak was over {limit:0} L/min in most minutes since {over_since:time}; now {leak:0} L/min" + _TAKEN + ".",
+    "lever.leak_within_limit": "Leak {leak:0} L/min" + _TAKEN + " is within {limit:0} L/min.",
+    "lever.little_mask_time":
+        "Only {hours:hours} of the last {of_hours:hours} on the mask (at least {least:fraction} is aimed at).",
+    "lever.mask_time_enough":
+        "On the mask for {hours:hours} of the last {of_hours:hours}: at least {least:fraction}, enough.",
     "lever.mask_time_not_known": "Time on the mask is not known: the start is not recorded.",
     "lever.mode_has_no_rate": "[[{mode}: ]]the mode has no such setting.",
-    "lever.no_acidosis": "No acidosis to act on.",
+    "lever.no_acidosis": "No acidosis with a high PaCO2 in the gas of {at:time}[[: pH {ph:2}]]"
+        "[[, PaCO2 {paco2_mmHg:gas}]].",
     "lever.no_gas": "No gas on support yet.",
-    "lever.no_pressure_support": "CPAP gives no pressure support; two levels would.",
-    "lever.nothing_logged": "Nothing logged lately.",
-    "lever.off_mask_acidotic": "Off the mask since {since:time} with acidosis.",
+    "lever.no_pressure_support": "CPAP gives no pressure support; two levels of pressure would.",
+    "lever.nothing_logged":
+        "No secretions, vomiting, agitation, poor comfort or sedation logged in the last {hours:trim} h.",
+    "lever.off_mask_acidotic": "Off the mask since {since:time} while acidotic.",
     "lever.own_rate_not_known": "The patient's own rate is not known.",
-    "lever.oxygen_above_need": "SpO2 {spo2:0} % at {at:time} is above {low:0} to {high:0} %: less oxygen is needed.",
+    "lever.oxygen_above_need":
+        "SpO2 {spo2:0} %" + _TAKEN + " is above its range, {low:0} to {high:0} %: less oxygen is needed.",
     "lever.oxygen_enough": "Oxygenation does not ask for it.",
-    "lever.pf_low": "P/F {pf:0} at {at:time} is at or below {limit:0} mmHg.",
-    "lever.port_not_cleared": "{epap:trim} cmH2O may not clear the exhalation port (at least {least:trim}).",
+    "lever.pf_low": "P/F {pf:gas} at {at:time} is at or below {limit:gas}.",
+    "lever.port_not_cleared":
+        "{epap:trim} cmH2O may not clear the exhalation port (at least {least:trim} cmH2O does).",
     "lever.present_epap": "EPAP now {epap:trim} cmH2O.",
-    "lever.present_leak": "Leak now {leak:0} L/min[[ ({definition})]][[, limit {limit:0} L/min]].",
+    "lever.present_leak":
+        "Leak now {leak:0} L/min" + _TAKEN + "[[, {definition}]][[, limit {limit:0} L/min]].",
     "lever.present_mask_time": "{hours:hours} of {of_hours:hours} on the mask.",
     "lever.present_oxygen": "[[FiO2 now {fio2:fraction}. ]][[Oxygen now {o2_flow:trim} L/min.]]",
-    "lever.present_rate": "Backup rate now {rate_set:0}/min[[, own rate {own_rate:0}/min]].",
+    "lever.present_rate": "Backup rate now {rate_set:0}/min.",
+    "lever.present_rates":
+        "Backup rate now {rate_set:0}/min, the patient's own rate {own_rate:0}/min" + _RATE + ".",
     "lever.present_support": "Pressure support now {pressure_support:trim} cmH2O[[ (IPAP {ipap:trim})]].",
     "lever.present_ti": "Inspiratory time now {ti:trim} s.",
     "lever.pressures_not_known": "The pressures are not recorded.",
     "lever.probable_break": "The mask seems off since {since:time}.",
     "lever.qualified_person_decides": "A qualified person decides.",
     "lever.raise_ipap_alike": "Raise IPAP alike, or pressure support falls.",
-    "lever.rate_in_reach": "The own rate {own_rate:0}/min is in reach (below {reach:0}/min).",
-    "lever.rate_no_effect": "No effect: the own rate is {own_rate:0}/min.",
-    "lever.review_epap": "EPAP {epap:trim} cmH2O: review before going past {limit:trim}.",
-    "lever.review_ipap": "IPAP {ipap:trim} cmH2O: review before going past {limit:trim}.",
-    "lever.review_ti": "Inspiratory time {ti:trim} s: review before going past {limit:trim}.",
-    "lever.spo2_below_range": "SpO2 {spo2:0} % at {at:time} is below {low:0} to {high:0} %.",
-    "lever.spo2_in_range": "SpO2 {spo2:0} % at {at:time} is within {low:0} to {high:0} %.",
+    "lever.rate_above_backup":
+        "No effect: the patient's own rate is {own_rate:0}/min" + _RATE +
+        ", not below the backup rate of {reach:0}/min.",
+    "lever.rate_below_backup":
+        "The patient's own rate, {own_rate:0}/min" + _RATE + ", is below the backup rate of {reach:0}/min.",
+    "lever.rate_in_reach":
+        "The patient's own rate, {own_rate:0}/min" + _RATE + ", is below {reach:0}/min: a backup rate can act.",
+    "lever.rate_no_effect":
+        "No effect: the patient's own rate is {own_rate:0}/min" + _RATE + ", not below {reach:0}/min.",
+    "lever.review_epap": "EPAP {epap:trim} cmH2O: review before going past {limit:trim} cmH2O.",
+    "lever.review_ipap": "IPAP {ipap:trim} cmH2O: review before going past {limit:trim} cmH2O.",
+    "lever.review_ti": "Inspiratory time {ti:trim} s: review before going past {limit:trim} s.",
+    "lever.spo2_below_range": "SpO2 {spo2:0} %" + _TAKEN + " is below its range, {low:0} to {high:0} %.",
+    "lever.spo2_in_range": "SpO2 {spo2:0} %" + _TAKEN + " is within its range, {low:0} to {high:0} %.",
     "lever.spo2_not_known": "SpO2 is not known.",
     "lever.ti_may_help": "A longer inspiration may help here.",
-    "lever.ti_not_for_this": "Longer inspiration helps in neuromuscular, chest wall or obesity hypoventilation only.",
+    "lever.ti_not_for_this":
+        "A longer inspiration helps in neuromuscular, chest wall or obesity hypoventilation only.",
     "lever.traps_air": "In COPD a longer inspiration or a faster rate traps air.",
     "lever.upper_airway": "EPAP holds the upper airway open.",
 }  # fmt: skip

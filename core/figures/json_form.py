@@ -139,7 +139,7 @@ class _Form:
         if isinstance(value, Mapping):
             return {str(k): self.value(str(k), v) for k, v in value.items()}
         if isinstance(value, tuple):
-            inner = "at" if name in ("t", "at", "probable_breaks") else ""
+            inner = "at" if name in ("t", "at", "probable_breaks", "median_of", "latest_median_of") else ""
             return [self.value(inner, v) for v in value]
         return tidy(value) if isinstance(value, float) else value
 

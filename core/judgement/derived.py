@@ -12,10 +12,14 @@ from core.record.message import Message
 
 @dataclass(frozen=True, slots=True)
 class FigureInput:
-    """What a figure was made from: a value, and when it was."""
+    """What a figure was made from: a value, and when it was.
+
+    `median_of`: the first and the last of the device's samples whose median it is; None for a single value.
+    """
 
     value: float | str | None = None
     at: Instant | None = None
+    median_of: tuple[Instant, Instant] | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -64,6 +64,7 @@ def leak_figure(ctx: Context) -> LeakFigure:
     near = series.between(start, ctx.as_of)
     worn = near.cut(~in_any(near.t, (*ctx.support.breaks, *suspected)) & np.isfinite(near.v))
     figure = _level(worn, slope_figure(ctx, points_of(ctx, worn), {}), meaning.definition)
+    figure = _with_newest(figure, worn, int(ctx.policy.trend.device_median_min.value * MINUTE))
     figure = replace(figure, probable_breaks=tuple((b.start, b.end) for b in suspected))
     figure = _with_adjustment(figure, ctx, series)
     if meaning.start > span_start(ctx):
@@ -77,15 +78,29 @@ def leak_figure(ctx: Context) -> LeakFigure:
 
 def _level(worn: Series, trend: RatioFigure, definition: str | None) -> LeakFigure:
     reasons = dict(trend.reasons)
-    for ours, theirs in (("slope_L_per_min_per_h", "slope_per_h"), ("latest_L_per_min", "latest")):
-        if theirs in reasons:
-            reasons[ours] = reasons.pop(theirs)
+    reasons.pop("latest", None)
+    if "slope_per_h" in reasons:
+        reasons["slope_L_per_min_per_h"] = reasons.pop("slope_per_h")
     if not len(worn):
         reasons["median_L_per_min"] = Message("leak.no_values")
     return LeakFigure(
         float(np.median(worn.v)) if len(worn) else None, trend.slope_per_h, trend.slope_low, trend.slope_high,
-        definition=definition, reasons=reasons, latest_L_per_min=trend.latest, latest_at=trend.at,
+        definition=definition, reasons=reasons,
+        median_of=(int(worn.t[0]), int(worn.t[-1])) if len(worn) > 1 else None,
     )  # fmt: skip
+
+
+def _with_newest(figure: LeakFigure, worn: Series, span: Instant) -> LeakFigure:
+    """The leak now: a quarter of an hour that has just begun would be the median of a breath or two."""
+    if not len(worn):
+        reasons = {**figure.reasons, "latest_L_per_min": Message("trend.no_values")}
+        return replace(figure, reasons=reasons)
+    at = int(worn.t[-1])
+    if worn.spot[-1]:
+        return replace(figure, latest_L_per_min=float(worn.v[-1]), latest_at=at)
+    near = worn.machine.between(at - span + 1, at)
+    of = (int(near.t[0]), at) if len(near) > 1 else None
+    return replace(figure, latest_L_per_min=float(np.median(near.v)), latest_at=at, latest_median_of=of)
 
 
 def _over(ctx: Context, figure: LeakFigure, worn: Series, definition: str) -> LeakFigure:

@@ -4,14 +4,17 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cached_property
-from math import isnan
+from math import isnan, nan
 
 from core.judgement import arms
 from core.judgement.context import Context
 from core.judgement.leak_trend import leak_figure
+from core.judgement.score_inputs import barriers
 from core.judgement.shapes import GasFigure, LeakFigure
-from core.judgement.trend import channel_trend, span_start
+from core.judgement.tidal_volume import Measured, measured_at, newest
+from core.judgement.trend import span_start
 from core.judgement.vitals_near import Found, VitalsNear
+from core.physiology.ventilation import base_weight, predicted_body_weight
 from core.record.instant import DAY, HOUR, Instant
 from core.record.message import Message
 from core.record.settings import ROOM_AIR, Settings
@@ -40,6 +43,17 @@ class Facts:
     def acidotic(self) -> bool:
         """The newest gas shows acute hypercapnia."""
         return self.gas is not None and arms.acute_hypercapnia(self.gas, self.ctx.policy)
+
+    @property
+    def acidosis_missing(self) -> tuple[str, ...]:
+        """What the newest gas lacks to show or rule out acute hypercapnia; nothing where one half rules it out."""
+        gas = self.gas
+        if gas is None or self.acidotic or gas.hypercapnic is False:
+            return ()
+        if gas.ph is not None and gas.ph >= self.ctx.policy.state.acidotic_below_ph.value:
+            return ()
+        known = {"ph": gas.ph is not None, "paco2": gas.paco2_mmHg is not None}
+        return tuple(name for name, is_known in known.items() if not is_known)
 
     @cached_property
     def with_pf(self) -> GasFigure | None:
@@ -84,9 +98,28 @@ class Facts:
         limit, latest = self.leak.limit_L_per_min, self.leak.latest_L_per_min
         return self.leak.over_since is not None or (limit is not None and latest is not None and latest > limit)
 
+    @property
+    def leak_back_within(self) -> bool:
+        """Over the limit by minutes, while the newest median or value is not: nobody may be told that it is."""
+        limit, latest = self.leak.limit_L_per_min, self.leak.latest_L_per_min
+        return limit is not None and latest is not None and latest <= limit
+
+    @cached_property
+    def tidal_volume(self) -> Measured | None:
+        """The newest tidal volume on the mask with its trust: a median, or one logged value."""
+        at = newest(self.ctx, "vte")
+        if at is None:
+            return None
+        walls = barriers(tuple(step.at for a in self.ctx.anchors for step in a.steps), self.ctx.support)
+        return measured_at(self.ctx, "vte", at, walls)
+
     @cached_property
     def tidal_volume_per_kg(self) -> float | None:
-        return channel_trend(self.ctx, "vte_per_kg").latest
+        """mL per kg of predicted weight; None without a volume, height or sex."""
+        height, sex = self.ctx.episode.latest("height"), self.ctx.episode.latest_text("sex")
+        volume = self.tidal_volume.value.value if self.tidal_volume is not None else None
+        weight = float(predicted_body_weight(nan if height is None else height, base_weight(sex)))
+        return volume / weight if isinstance(volume, float) and not isnan(weight) else None
 
     @property
     def oxygen_given(self) -> bool:

@@ -59,17 +59,37 @@ def _fio2(f: Facts) -> LeverFigure:
 
 
 def _saturation(f: Facts, spo2: Found) -> dict[str, Value]:
-    """The SpO2 that every lever speaks of, with its range."""
-    return {"spo2": spo2.value, "low": f.ctx.target.low, "high": f.ctx.target.high, "at": spo2.at}
+    """The SpO2 that every lever speaks of, with its range; `since` where it is a median."""
+    return {
+        "spo2": spo2.value,
+        "low": f.ctx.target.low,
+        "high": f.ctx.target.high,
+        "at": spo2.at,
+        "since": spo2.since,
+    }
+
+
+def _leak(f: Facts) -> dict[str, Value]:
+    """The leak that every lever speaks of: of when it is, and since when where it is a median."""
+    of = f.leak.latest_median_of
+    return {"leak": f.leak.latest_L_per_min, "at": f.leak.latest_at, "since": of[0] if of is not None else None}
+
+
+def _own(own: Found) -> dict[str, Value]:
+    """The patient's own rate, counted or a median of the device."""
+    return {"own_rate": own.value, "at": own.at, "since": own.since, "counted": not own.device}
 
 
 def _mask(f: Facts) -> LeverFigure:
     """Leak, mask, exhalation port."""
     leak, policy = f.leak, f.ctx.policy
-    present = _say("present_leak", leak=leak.latest_L_per_min, limit=leak.limit_L_per_min, definition=leak.definition)
+    told = _leak(f)
+    shown = _say("present_leak", **told, limit=leak.limit_L_per_min, definition=leak.definition)
+    present = shown if leak.latest_L_per_min is not None else None
     why: list[Message] = []
     if f.leak_over:
-        why.append(_say("leak_over_limit", leak=leak.latest_L_per_min, limit=leak.limit_L_per_min, at=leak.latest_at))
+        key = "leak_was_over_limit" if f.leak_back_within else "leak_over_limit"
+        why.append(_say(key, **told, limit=leak.limit_L_per_min, over_since=leak.over_since))
     if leak.probable_breaks and leak.probable_breaks[-1][1] is None:
         why.append(_say("probable_break", since=leak.probable_breaks[-1][0]))
     clears = policy.levers.port_clears_from_cmH2O.value
@@ -79,16 +99,17 @@ def _mask(f: Facts) -> LeverFigure:
         return _lever("mask", True, why, present)
     if leak.latest_L_per_min is None:
         return _lever("mask", False, [_say("leak_not_known")], present)
-    key = "leak_definition_not_known" if leak.definition is None else "leak_within_limit"
-    told = _say(key, leak=leak.latest_L_per_min, limit=leak.limit_L_per_min, at=leak.latest_at)
-    return _lever("mask", False, [told], present)
+    key = "leak_limit_not_known" if leak.limit_L_per_min is None else "leak_within_limit"
+    key = "leak_definition_not_known" if leak.definition is None else key
+    return _lever("mask", False, [_say(key, **told, limit=leak.limit_L_per_min)], present)
 
 
 def _secretions(f: Facts) -> LeverFigure:
     """Secretions, sedation, asynchrony."""
     events = f.recent_events()
     why = [_say("event", channel=channel, text=text, at=at) for channel, text, at in events]
-    return _lever("secretions", bool(events), why or [_say("nothing_logged")], None)
+    quiet = _say("nothing_logged", hours=f.ctx.policy.trend.span_h.value)
+    return _lever("secretions", bool(events), why or [quiet], None)
 
 
 def _time_on_mask(f: Facts) -> LeverFigure:
@@ -102,17 +123,19 @@ def _time_on_mask(f: Facts) -> LeverFigure:
     if f.acidotic and off is not None:
         why.append(_say("off_mask_acidotic", since=off.start))
     if f.acidotic and hours < least * of_hours:
-        why.append(_say("little_mask_time", hours=hours, of_hours=of_hours))
-    enough = _say("mask_time_enough" if f.acidotic else "no_acidosis")
-    return _lever("time_on_mask", bool(why), why or [enough], present)
+        why.append(_say("little_mask_time", hours=hours, of_hours=of_hours, least=least))
+    enough = [_say("mask_time_enough", hours=hours, of_hours=of_hours, least=least)]
+    return _lever("time_on_mask", bool(why), why or (enough if f.acidotic else _acidosis(f)), present)
 
 
 def _acidosis(f: Facts) -> list[Message]:
     gas = f.gas
     if gas is None:
         return [_say("no_gas")]
+    if f.acidosis_missing:
+        return [_say("acidosis_not_known", at=gas.at, missing=", ".join(f.acidosis_missing))]
     if not f.acidotic:
-        return [_say("no_acidosis")]
+        return [_say("no_acidosis", at=gas.at, ph=gas.ph, paco2_mmHg=gas.paco2_mmHg)]
     return [_say("acidosis", ph=gas.ph, paco2_mmHg=gas.paco2_mmHg, at=gas.at)]
 
 
@@ -128,25 +151,40 @@ def _pressure_support(f: Facts) -> LeverFigure:
     if full:
         limits.append(_say("review_ipap", ipap=now.ipap, limit=policy.review_ipap_cmH2O.value))
     if f.leak_over:
-        limits.append(_say("leak_first", leak=f.leak.latest_L_per_min))
-    volume = f.tidal_volume_per_kg
-    if f.hypoxaemic and volume is not None and volume > policy.vt_ml_per_kg.value:
-        limits.append(_say("high_tidal_volume", vt_per_kg=volume, limit=policy.vt_ml_per_kg.value))
+        limits.append(_say("leak_first", **_leak(f)))
+    limits += _high_volume(f)
     return _lever("pressure_support", f.acidotic and not full, why, present, limits)
+
+
+def _high_volume(f: Facts) -> list[Message]:
+    """A tidal volume that is large already in hypoxaemic failure, with its doubt."""
+    per_kg, volume, limit = f.tidal_volume_per_kg, f.tidal_volume, f.ctx.policy.levers.vt_ml_per_kg.value
+    if not f.hypoxaemic or volume is None or per_kg is None or per_kg <= limit:
+        return []
+    given = volume.value
+    since = given.median_of[0] if given.median_of is not None else None
+    said = _say("high_tidal_volume", vt_per_kg=per_kg, limit=limit, at=given.at, since=since)
+    return [said, *([volume.doubt] if volume.doubt is not None else [])]
 
 
 def _backup_rate(f: Facts) -> LeverFigure:
     """A rate only where it would take effect: the patient's own rate must be in its reach."""
     now, reach = f.now, f.ctx.policy.levers.rate_in_reach_per_min.value
-    own = f.own_rate.value if f.own_rate is not None else None
-    present = _say("present_rate", rate_set=number(now.rate_set), own_rate=own)
+    found = f.own_rate
+    present = _say("present_rate", rate_set=number(now.rate_set))
+    if found is not None:
+        present = _say("present_rates", rate_set=number(now.rate_set), **_own(found))
     if not now.is_bilevel or (now.mode is not None and now.mode not in RATE_MODES):
         return _lever("backup_rate", False, [_say("mode_has_no_rate", mode=now.mode)], present)
-    if own is None:
+    if found is None:
         return _lever("backup_rate", False, [_say("own_rate_not_known")], present)
-    if own >= max(reach, now.rate_set if not isnan(now.rate_set) else 0.0):
-        return _lever("backup_rate", False, [_say("rate_no_effect", own_rate=own, reach=reach)], present)
-    why = [*_acidosis(f), _say("rate_in_reach", own_rate=own, reach=reach)]
+    of_setting = not isnan(now.rate_set) and now.rate_set > reach
+    bound = now.rate_set if of_setting else reach
+    if found.value >= bound:
+        key = "rate_above_backup" if of_setting else "rate_no_effect"
+        return _lever("backup_rate", False, [_say(key, **_own(found), reach=bound)], present)
+    key = "rate_below_backup" if of_setting else "rate_in_reach"
+    why = [*_acidosis(f), _say(key, **_own(found), reach=bound)]
     limits = [_say("traps_air")] if f.ctx.indication == "copd" else []
     return _lever("backup_rate", f.acidotic, why, present, limits)
 
@@ -179,7 +217,7 @@ def _epap(f: Facts) -> LeverFigure:
     if f.ctx.indication == "obesity hypoventilation" and f.acidotic:
         why.append(_say("upper_airway"))
     if f.leak_over:
-        limits.append(_say("leak_first", leak=f.leak.latest_L_per_min))
+        limits.append(_say("leak_first", **_leak(f)))
     return _lever("epap", bool(why) and not full, why or _oxygen_enough(f), present, limits)
 
 

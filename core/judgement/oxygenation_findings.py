@@ -89,7 +89,7 @@ def _mean_pressure(ctx: Context, at: Instant, walls: Walls) -> DerivedFigure:
     rate = rate_at(ctx, at, walls)
     inputs = {
         "ipap": FigureInput(_number(now.ipap), at), "epap": FigureInput(_number(now.epap), at),
-        "ti": FigureInput(_number(now.ti), at), "rr": FigureInput(rate.value, rate.at),
+        "ti": FigureInput(_number(now.ti), at), "rr": rate.given,
     }  # fmt: skip
     formula = oxygenation_index.mean_airway_pressure
     return derive(_MEAN, formula, inputs, at, caveats=(Message("caveat.square_wave_no_leak"),))
@@ -128,7 +128,7 @@ def _mrox(ctx: Context, gas: GasFigure | None, walls: Walls) -> DerivedFigure:
     if gas is None:
         return DerivedFigure("mrox", caveats=_HIGH_FLOW, reason=_NO_GAS)
     rate = rate_at(ctx, gas.at, walls)
-    inputs = {**_of_gas(gas), "rr": FigureInput(rate.value, rate.at)}
+    inputs = {**_of_gas(gas), "rr": rate.given}
     return derive("mrox", rox.mrox, inputs, gas.at, caveats=_HIGH_FLOW)
 
 
@@ -139,7 +139,7 @@ def _rox_hr(ctx: Context, walls: Walls) -> DerivedFigure:
         reason = ctx.rox.reasons.get("latest", Message("trend.no_values"))
         return DerivedFigure("rox_hr", caveats=_HIGH_FLOW, reason=reason)
     heart = nearest(ctx.episode, "hr", at, ctx.policy.freshness.of("hr"), walls)
-    inputs = {**ctx.rox.inputs, "hr": FigureInput(heart.value, heart.at)}
+    inputs = {**ctx.rox.inputs, "hr": heart.given}
     return derive("rox_hr", rox.rox_hr, inputs, at, caveats=_HIGH_FLOW)
 
 

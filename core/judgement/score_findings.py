@@ -89,7 +89,7 @@ def _copd(ctx: Context, gas: GasFigure, walls: Walls) -> ScoreFigure:
         after_two_hours=late, copd=True, texts=texts_of(found),
     )  # fmt: skip
     inputs = {
-        name: ScoreInput(found[name].value, found[name].at, step) if name in found
+        name: ScoreInput(found[name].value, found[name].at, step, found[name].median_of) if name in found
         else ScoreInput(ctx.episode.latest(name), None, step)
         for name, step in risk.steps.items()
     }  # fmt: skip

@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from core.judgement.context import Context
+from core.judgement.derived import FigureInput
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
 from core.judgement.scores import Score, breathes_oxygen, hacor, news2
 from core.judgement.shapes import GasFigure, ScoreFigure, ScoreInput
@@ -32,11 +33,17 @@ OBSERVED = ("rr", "spo2", "hr", "sbp", "temp")
 
 @dataclass(frozen=True, slots=True)
 class Found:
-    """A value found for a score: the number or word, when it was, and its text as typed."""
+    """A value found for a score: the number or word, when it was, its text as typed, of which samples a median."""
 
     value: float | str | None = None
     at: Instant | None = None
     text: str | None = None
+    median_of: tuple[Instant, Instant] | None = None
+
+    @property
+    def given(self) -> FigureInput:
+        """The same as what a figure is made from."""
+        return FigureInput(self.value, self.at, self.median_of)
 
     @property
     def number(self) -> float | None:
@@ -85,11 +92,12 @@ def _from_machine(near: Series, at: Instant) -> Found:
     if not len(near):
         return NOTHING
     around = near.between(at - DEVICE_MEDIAN // 2, at + DEVICE_MEDIAN // 2)
-    values = around.v[~np.isnan(around.v)]
-    if not values.size:
+    around = around.cut(~np.isnan(around.v))
+    if not len(around):
         return NOTHING
     i = int(np.argmin(np.abs(around.t - at)))
-    return Found(float(np.median(values)), int(around.t[i]))
+    span = (int(around.t[0]), int(around.t[-1])) if len(around) > 1 else None
+    return Found(float(np.median(around.v)), int(around.t[i]), median_of=span)
 
 
 def _between_walls(at: Instant, walls: Walls) -> tuple[Instant, Instant]:
@@ -215,7 +223,7 @@ def score_figure(
 ) -> ScoreFigure:
     """A pure score with the times of its inputs."""
     inputs = {
-        name: ScoreInput(_shown(part.value), found.get(name, NOTHING).at, part.points)
+        name: ScoreInput(_shown(part.value), (f := found.get(name, NOTHING)).at, part.points, f.median_of)
         for name, part in score.parts.items()
     }
     why = dict(reasons)

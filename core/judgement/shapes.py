@@ -220,6 +220,8 @@ class RatioFigure:
     reasons: Reasons = field(default_factory=dict)
     inputs: Mapping[str, FigureInput] = field(default_factory=dict)
     """What the newest value was made from."""
+    median_of: tuple[Instant, Instant] | None = None
+    """The first and the last of the device's samples whose median the newest value is; None for a single value."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -235,7 +237,7 @@ class LeakFigure:
     definition: str | None = None
     reasons: Reasons = field(default_factory=dict)
     latest_L_per_min: float | None = None
-    """The newest 15-min median, or the newest logged value where it is newer."""
+    """The median of the 15 min up to the newest device sample, or the newest logged value where it is newer."""
     latest_at: Instant | None = None
     over_since: Instant | None = None
     """Over the limit, sustained, since then and still."""
@@ -245,15 +247,23 @@ class LeakFigure:
     after_adjustment_L_per_min: float | None = None
     probable_breaks: tuple[tuple[Instant, Instant | None], ...] = ()
     """Unlogged breaks that the device's values suggest: start, and end or None while it goes on."""
+    median_of: tuple[Instant, Instant] | None = None
+    """The first and the last value whose median `median_L_per_min` is; None for a single value."""
+    latest_median_of: tuple[Instant, Instant] | None = None
+    """The first and the last sample of the newest median; None for a single value."""
 
 
 @dataclass(frozen=True, slots=True)
 class ScoreInput:
-    """One input of a score: its value, when it was, the points it gave (None where missing)."""
+    """One input of a score: its value, when it was, the points it gave (None where missing).
+
+    `median_of`: the first and the last of the device's samples whose median it is; None for a single value.
+    """
 
     value: float | str | None = None
     at: Instant | None = None
     points: float | None = None
+    median_of: tuple[Instant, Instant] | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -87,7 +87,7 @@ def measured_at(
     `code`: the trust of the tidal volumes of the same minutes, where it is known.
     """
     i = int(np.searchsorted(walls, at, side="left"))
-    low = max(at - _median_span(ctx), int(walls[i - 1]) + 1 if i > 0 else -(2**62))
+    low = max(at - _median_span(ctx) + 1, int(walls[i - 1]) + 1 if i > 0 else -(2**62))
     near = _worn(ctx, ctx.episode.number(channel).between(low, at))
     part = near.machine
     if not len(part) or (len(near) and bool(near.spot[-1])):
@@ -99,7 +99,8 @@ def measured_at(
         code = _commonest(codes_of(ctx, part.t, volume, part.spot))
     limit = ctx.policy.leak.doubt_tidal_volume_above_L_per_min.value
     middle = float(median(part.v.tolist()))
-    return Measured(FigureInput(middle, int(part.t[-1])), code, why_doubtful(code, limit))
+    span = (int(part.t[0]), int(part.t[-1])) if len(part) > 1 else None
+    return Measured(FigureInput(middle, int(part.t[-1]), span), code, why_doubtful(code, limit))
 
 
 def _commonest(codes: NDArray[np.int8]) -> Trust:

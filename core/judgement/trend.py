@@ -29,15 +29,16 @@ ROX_CAVEAT = Message("trend.rox_validated_in_high_flow")
 
 @dataclass(frozen=True, slots=True)
 class Points:
-    """Values over time, in order, shapes (n,)."""
+    """Values over time, in order, shapes (n,). `newest_of`: the samples whose median the last one is, if any."""
 
     t: Times
     v: Values
+    newest_of: tuple[Instant, Instant] | None = None
 
     def within(self, start: Instant, end: Instant) -> Points:
         """The points from `start` to `end`, both included."""
         i, j = np.searchsorted(self.t, [start, end + 1])
-        return Points(self.t[i:j], self.v[i:j])
+        return Points(self.t[i:j], self.v[i:j], self.newest_of if j == self.t.size else None)
 
 
 NO_POINTS = Points(np.empty(0, np.int64), np.empty(0))
@@ -69,6 +70,7 @@ def slope_figure(
     return RatioFigure(
         None if hidden else float(points.v[-1]), None if empty else int(points.t[-1]), _known(line.slope),
         _known(line.low), _known(line.high), n, start, caveat, reasons,
+        median_of=None if hidden else points.newest_of,
     )  # fmt: skip
 
 
@@ -100,11 +102,21 @@ def _pf(ctx: Context) -> RatioFigure:
 
 @dataclass(frozen=True, slots=True)
 class Saturations:
-    """SpO2 on support with the FiO2 of that moment, NaN where not known; device values as 15-min medians."""
+    """SpO2 on support with the FiO2 of that moment, NaN where not known; device values as 15-min medians.
+
+    `first`: the oldest sample of each median, the moment itself of a single value.
+    """
 
     t: Times
     spo2: Values
     fio2: Values
+    first: Times
+
+    @property
+    def newest_of(self) -> tuple[Instant, Instant] | None:
+        """The first and the last sample of the newest median; None for a single value."""
+        single = not self.t.size or self.first[-1] == self.t[-1]
+        return None if single else (int(self.first[-1]), int(self.t[-1]))
 
 
 def saturation_points(ctx: Context) -> Saturations:
@@ -120,8 +132,9 @@ def saturation_points(ctx: Context) -> Saturations:
     order = np.argsort(t, kind="stable")
     values = np.concatenate((spot.v, bins.v))[order]
     fractions = np.concatenate((fio2.on(spot.t), np.where(same, from_bins, np.nan)))[order]
+    first = np.concatenate((spot.t, bins.first))[order]
     keep = ~in_any(t[order], ctx.support.breaks)
-    return Saturations(t[order][keep], values[keep], fractions[keep])
+    return Saturations(t[order][keep], values[keep], fractions[keep], first[keep])
 
 
 def _finite(series: Series) -> Series:
@@ -140,12 +153,15 @@ def _sf(ctx: Context, points: Saturations) -> RatioFigure:
         values = {"at": int(points.t[-1]), "spo2": float(points.spo2[-1]), "limit": ceiling}
         reasons["latest"] = Message("trend.spo2_above_ceiling", values)
     figure = slope_figure(ctx, Points(points.t[usable], points.spo2[usable] / points.fio2[usable]), reasons)
-    return figure if figure.latest is None else replace(figure, inputs=_oxygen_inputs(points))
+    if figure.latest is None:
+        return figure
+    return replace(figure, inputs=_oxygen_inputs(points), median_of=points.newest_of)
 
 
 def _oxygen_inputs(points: Saturations) -> dict[str, FigureInput]:
     at = int(points.t[-1])
-    return {"spo2": FigureInput(float(points.spo2[-1]), at), "fio2": FigureInput(float(points.fio2[-1]), at)}
+    spo2 = FigureInput(float(points.spo2[-1]), at, points.newest_of)
+    return {"spo2": spo2, "fio2": FigureInput(float(points.fio2[-1]), at)}
 
 
 def _oxygen_reasons(points: Saturations) -> dict[str, Message]:
@@ -164,18 +180,21 @@ def _rox(ctx: Context, points: Saturations) -> RatioFigure:
     figure = slope_figure(ctx, Points(points.t[usable], ratio), reasons, ROX_CAVEAT)
     if figure.latest is None:
         return figure
-    rate = FigureInput(float(rates[-1]), _rate_time(ctx, int(points.t[-1])))
-    return replace(figure, inputs={**_oxygen_inputs(points), "rr": rate})
+    rate = _rate_given(ctx, float(rates[-1]), int(points.t[-1]))
+    return replace(figure, inputs={**_oxygen_inputs(points), "rr": rate}, median_of=points.newest_of)
 
 
-def _rate_time(ctx: Context, at: Instant) -> Instant:
-    """When the rate that `rates_at` gives for a moment was counted; the moment itself for the device's median."""
+def _rate_given(ctx: Context, rate: float, at: Instant) -> FigureInput:
+    """The rate that `rates_at` gives for a moment, with when it was counted, or of which samples it is a median."""
     counted = _finite(ctx.episode.number("rr").spots)
-    if not len(counted):
-        return at
-    nearest = int(counted.t[int(np.argmin(np.abs(counted.t - at)))])
-    reach = int(ctx.policy.freshness.vitals_min.value * MINUTE)
-    return nearest if abs(nearest - at) <= reach else at
+    if len(counted):
+        nearest = int(counted.t[int(np.argmin(np.abs(counted.t - at)))])
+        if abs(nearest - at) <= int(ctx.policy.freshness.vitals_min.value * MINUTE):
+            return FigureInput(rate, nearest)
+    span = int(ctx.policy.trend.device_median_min.value * MINUTE)
+    quarter = _machine_rate(ctx).between(at // span * span, at // span * span + span - 1)
+    several = len(quarter) > 1
+    return FigureInput(rate, at, (int(quarter.t[0]), int(quarter.t[-1])) if several else None)
 
 
 def rates_at(ctx: Context, times: Times) -> Values:
@@ -235,13 +254,16 @@ def points_of(ctx: Context, series: Series) -> Points:
 
 def _device_points(ctx: Context, series: Series) -> Points:
     bins = _bins(ctx, series.between(span_start(ctx), ctx.as_of))
-    return Points(bins.t, bins.v)
+    if not bins.t.size or bins.first[-1] == bins.last[-1]:
+        return Points(bins.t, bins.v)
+    return Points(bins.t, bins.v, (int(bins.first[-1]), int(bins.last[-1])))
 
 
 def _together(a: Points, b: Points) -> Points:
     t, v = np.concatenate((a.t, b.t)), np.concatenate((a.v, b.v))
     order = np.argsort(t, kind="stable")
-    return Points(t[order], v[order])
+    newest = next((p for p in (b, a) if p.t.size and p.t[-1] == t.max()), NO_POINTS)
+    return Points(t[order], v[order], newest.newest_of)
 
 
 def _vte_per_kg(ctx: Context) -> RatioFigure:
@@ -254,4 +276,4 @@ def _vte_per_kg(ctx: Context) -> RatioFigure:
     series = series.cut(~in_any(series.t, (*ctx.support.breaks, *probable_breaks(ctx))))
     points = points_of(ctx, series)
     caveat = Message("caveat.tidal_volume_modelled_on_mask")
-    return slope_figure(ctx, Points(points.t, points.v / pbw), {}, caveat)
+    return slope_figure(ctx, Points(points.t, points.v / pbw, points.newest_of), {}, caveat)

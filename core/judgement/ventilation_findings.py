@@ -105,7 +105,7 @@ def _breathing(ctx: Context, at: Instant | None, walls: Walls) -> _Breathing:
     if at is None:
         return _Breathing(None, FigureInput(), None, None)
     found = rate_at(ctx, at, walls)
-    rate = FigureInput(found.value, found.at)
+    rate = found.given
     volume = measured_at(ctx, "vte", at, walls)
     code = volume.code if volume is not None else None
     return _Breathing(at, rate, volume, measured_at(ctx, "mv", at, walls, rate=found.number, code=code))
@@ -161,7 +161,7 @@ def _alveolar(b: _Breathing, minute: DerivedFigure, pbw: DerivedFigure) -> Deriv
     if not isinstance(rate, float) or rate <= 0:
         return DerivedFigure(key, caveats=_caveats(formula), reason=Message("ventilation.no_rate"))
     dead = DEAD_SPACE_PER_KG * pbw.value if isinstance(pbw.value, float) else DEAD_SPACE_ML
-    breath = FigureInput(minute.value * _PER_L_TO_ML / rate, minute.at)
+    breath = FigureInput(minute.value * _PER_L_TO_ML / rate, minute.at, _span(minute))
     inputs = {"vte": breath, "rr": b.rate, "dead_space": FigureInput(dead)}
     return derive(key, formula, inputs, minute.at, doubt=b.doubt, caveats=_caveats(formula))
 
@@ -171,4 +171,10 @@ def _caveats(formula: Callable[..., float]) -> tuple[Message, ...]:
 
 
 def _given(figure: DerivedFigure) -> FigureInput:
-    return FigureInput(figure.value, figure.at)
+    return FigureInput(figure.value, figure.at, _span(figure))
+
+
+def _span(figure: DerivedFigure) -> tuple[Instant, Instant] | None:
+    """The samples that the volume a figure is made from is the median of."""
+    volume = figure.inputs.get("mv") or figure.inputs.get("vte")
+    return volume.median_of if volume is not None else None

@@ -20,11 +20,15 @@ from core.record.instant import MINUTE, Instant
 
 @dataclass(frozen=True, slots=True)
 class Found:
-    """A value near a moment. `device` is True for a median of device samples; `at` is the newest used."""
+    """A value near a moment. `device` is True for a median of device samples; `at` is the newest used.
+
+    `since`: the oldest sample of a median; None for a single value.
+    """
 
     value: float
     at: Instant
     device: bool
+    since: Instant | None = None
 
 
 @dataclass(frozen=True)
@@ -102,4 +106,7 @@ def _median_before(series: Series, low: Instant, high: Instant) -> Found | None:
     if not len(series):
         return None
     i, j = (int(k) for k in np.searchsorted(series.t, [low, high], side="right"))
-    return Found(median(series.v[i:j].tolist()), int(series.t[j - 1]), True) if i < j else None
+    if i >= j:
+        return None
+    since = int(series.t[i]) if j - i > 1 else None
+    return Found(median(series.v[i:j].tolist()), int(series.t[j - 1]), True, since)

@@ -34,10 +34,12 @@ def test_oxygenation_and_ventilation_are_there_with_their_times_and_words():
     imputed = found["oxygenation"]["pf_imputed_mmHg"]
     assert round(imputed["value"]) == 128
     assert imputed["key"] == "pf_imputed"
-    assert imputed["inputs"]["spo2"] == {"value": 92.0, "at": "2026-03-28T02:50:00+00:00"}
+    assert imputed["inputs"]["spo2"] == {"value": 92.0, "at": "2026-03-28T02:50:00+00:00", "median_of": None}
     assert "non-linear" in imputed["caveats"][0]["text"]
     volume = found["ventilation"]["tidal_volume_mL"]
     assert (volume["value"], volume["at"]) == (400.0, "2026-03-28T02:59:00+00:00")
+    span = ["2026-03-28T02:45:00+00:00", "2026-03-28T02:59:00+00:00"]
+    assert volume["inputs"]["vte"]["median_of"] == span
     assert volume["doubt"]["key"] == "tidal_volume.leak_not_known"
     assert "doubtful" in volume["doubt"]["text"]
     assert found["ratios"]["sf"]["inputs"]["fio2"]["value"] == 0.5

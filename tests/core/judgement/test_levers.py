@@ -7,7 +7,7 @@ import pytest
 from app.words import Reader, sentence
 from core.judgement.levers import levers
 from core.judgement.shapes import LeverFigure
-from tests.support.log_cases import context
+from tests.support.log_cases import at, context
 
 ORDER = ["fio2", "mask", "secretions", "time_on_mask", "pressure_support", "backup_rate", "inspiratory_time", "epap"]
 ACIDOTIC = "03:00 ph 7.26 paco2 72\n"
@@ -167,10 +167,99 @@ def test_epap_without_a_saturation_says_so() -> None:
     assert keys(found()["epap"])[0] == "spo2_not_known"
 
 
-def test_the_leak_of_a_lever_says_of_when_it_is() -> None:
-    leaking = found(
-        "device leak 02:00 04:00 50 50", start="mode BPAP-ST ipap 16 epap 5 leak_definition unintentional"
-    )["mask"]
-    (why,) = (m for m in leaking.why if m.key == "lever.leak_over_limit")
-    assert isinstance(why.values["at"], int)
-    assert "newest 15-min median or logged value, " in sentence(why, Reader())
+LEAKING = "mode BPAP-ST ipap 16 epap 5 leak_definition unintentional"
+AT_NIGHT = Reader(near=(at("00:00"), at("12:00")))
+
+
+def said(lever: LeverFigure, key: str) -> str:
+    """The sentence of one reason, limit or present value of a lever."""
+    present = [lever.present] if lever.present is not None else []
+    return next(sentence(m, AT_NIGHT) for m in (*lever.why, *lever.limits, *present) if m.key == f"lever.{key}")
+
+
+@pytest.mark.parametrize(
+    ("more", "told"),
+    [
+        ("device leak 02:00 04:01 50 50", "Leak 50 L/min (median from 03:46 to 04:00) is over 30 L/min."),
+        ("device leak 02:00 03:31 20 20\n03:58 leak 50", "Leak 50 L/min (one reading at 03:58) is over 30 L/min."),
+    ],
+)
+def test_the_leak_of_a_lever_says_of_when_it_is_and_of_what_kind(more: str, told: str) -> None:
+    assert said(found(more, start=LEAKING)["mask"], "leak_over_limit") == told
+
+
+def test_the_newest_leak_is_a_quarter_of_an_hour_and_never_a_breath() -> None:
+    """One sample at 04:00 begins a new quarter by the clock; it alone is no level."""
+    mask = found("device leak 02:00 04:00 20 20\ndevice leak 04:00 04:01 90 90", start=LEAKING)["mask"]
+    assert not mask.can_act
+    assert said(mask, "leak_within_limit") == "Leak 20 L/min (median from 03:46 to 04:00) is within 30 L/min."
+    assert (
+        said(mask, "present_leak") == "Leak now 20 L/min (median from 03:46 to 04:00), unintentional, limit 30 L/min."
+    )
+
+
+def test_a_leak_that_came_back_within_its_limit_is_not_called_over_it() -> None:
+    """Over in ten of twelve minutes up to 03:50, then within: by minutes not yet over, by its median within."""
+    more = "device leak 02:00 03:49 50 50\ndevice leak 03:49 04:00 20 20"
+    mask = found(more, start=LEAKING, as_of="03:57")["mask"]
+    told = said(mask, "leak_was_over_limit")
+    assert told.startswith("Leak was over 30 L/min in most minutes since 02:00; now 20 L/min (median from ")
+
+
+def test_a_leak_without_a_known_limit_is_not_called_within_it() -> None:
+    mask = found("device leak 02:00 04:00 20 20", start="mode BPAP-ST leak_definition total")["mask"]
+    assert said(mask, "leak_limit_not_known").endswith(": its limit is not known without the pressures.")
+
+
+@pytest.mark.parametrize(
+    ("more", "told"),
+    [
+        ("03:40 spo2 97", "SpO2 97 % (one reading at 03:40) is above its range, 88 to 92 %: less oxygen is needed."),
+        ("device spo2 03:00 04:01 97 97",
+         "SpO2 97 % (median from 03:46 to 04:00) is above its range, 88 to 92 %: less oxygen is needed."),
+        ("device spo2 04:00 04:01 97 97",
+         "SpO2 97 % (one reading at 04:00) is above its range, 88 to 92 %: less oxygen is needed."),
+    ],
+)  # fmt: skip
+def test_the_saturation_of_a_lever_is_a_median_or_one_reading(more: str, told: str) -> None:
+    assert said(found(more)["fio2"], "oxygen_above_need") == told
+
+
+def test_the_rate_of_a_lever_is_counted_or_a_median() -> None:
+    counted = found("03:50 rr 24")["backup_rate"]
+    assert said(counted, "rate_no_effect") == (
+        "No effect: the patient's own rate is 24/min (counted at 03:50), not below 20/min."
+    )
+    machine = found("device rr_total 03:00 04:01 14 14")["backup_rate"]
+    assert said(machine, "rate_in_reach") == (
+        "The patient's own rate, 14/min (median from 03:46 to 04:00), is below 20/min: a backup rate can act."
+    )
+    fast = found("03:50 rr 24", start="mode BPAP-ST ipap 16 epap 5 rate_set 24")["backup_rate"]
+    assert said(fast, "rate_above_backup").endswith("not below the backup rate of 24/min.")
+
+
+def test_a_high_tidal_volume_says_of_when_it_is_and_its_doubt() -> None:
+    more = "02:30 height 175 sex male\n03:00 ph 7.30 paco2 50 pao2 60\ndevice vte 02:00 04:01 720 720\n"
+    setting = "mode BPAP-ST ipap 16 epap 8 fio2 50%"
+    lever = found(more, start=setting, indication="pneumonia")["pressure_support"]
+    told = "Tidal volume 10.2 mL/kg (median from 03:46 to 04:00) is above 9.5 mL/kg already."
+    assert said(lever, "high_tidal_volume") == told
+    assert "tidal_volume.leak_not_known" in [m.key for m in lever.limits]
+    leaking = "device leak 02:00 04:01 40 40"
+    lever = found(more + leaking, start=f"{setting} leak_definition unintentional", indication="pneumonia")
+    assert "tidal_volume.leak_too_large" in [m.key for m in lever["pressure_support"].limits]
+
+
+@pytest.mark.parametrize(
+    ("gas", "missing"), [("03:00 ph 7.20", "PaCO2 not reported."), ("03:00 paco2 72", "pH not reported.")]
+)
+def test_half_a_gas_is_no_proof_that_there_is_no_acidosis(gas: str, missing: str) -> None:
+    lever = found(gas)["pressure_support"]
+    assert not lever.can_act
+    assert said(lever, "acidosis_not_known").endswith(missing)
+    assert keys(found(gas)["time_on_mask"])[0] == "acidosis_not_known"
+
+
+@pytest.mark.parametrize("gas", ["03:00 ph 7.40", "03:00 paco2 38", "03:00 ph 7.20 paco2 38"])
+def test_what_one_half_rules_out_is_no_acidosis(gas: str) -> None:
+    assert keys(found(gas)["pressure_support"])[0] == "no_acidosis"
