@@ -132,8 +132,8 @@ def _last_acidotic(seen: Observed, at: Instant) -> bool:
 
 
 def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
-    """Pressure support by 2 or more, any change of mode, oxygen up by 0.04 or 1 L/min at hypercapnic risk, FiO2 up
-    by 0.10 in hypoxaemic failure."""
+    """Pressure support by 2 or more, any change of mode, oxygen up by 0.04 or 1 L/min at hypercapnic risk (or by
+    nobody knows how much), FiO2 up by 0.10 in hypoxaemic failure."""
     channels = {s.channel for s in response.steps}
     if "mode" in channels:
         return True
@@ -145,7 +145,14 @@ def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
         return True
     if not channels & {"fio2", "o2_flow"} or not (seen.risk_since is not None or seen.ctx.hypercapnic_risk):
         return False
+    if _oxygen_not_comparable(response.steps):
+        return True
     return any(round(moved.get(c, 0.0) - rule.limits[c], 6) >= 0 for c in ("fio2", "o2_flow"))
+
+
+def _oxygen_not_comparable(steps: tuple[Step, ...]) -> bool:
+    """A known FiO2 gave way to a flow, or the other way: whether it rose cannot be told, so it is not taken for no."""
+    return any(s.channel == "fio2" and (s.before is None) is not (s.after is None) for s in steps)
 
 
 def _oxygen_raised(seen: Observed, rule: DueRule, response: ResponseFigure, by: float) -> bool:

@@ -82,6 +82,7 @@ def test_a_late_gas_closes_it_and_the_flag_of_being_overdue_ends():
         ("05:00 fio2 34%", True),  # up by 0.04 at hypercapnic risk
         ("05:00 fio2 33%", False),
         ("05:00 fio2 24%", False),  # lowered
+        ("05:00 o2_flow 6", True),  # whether it rose cannot be told
         ("05:00 rate_set 24", False),
         ("05:00 interface nasal", False),
     ],
