@@ -2,7 +2,7 @@
 
 A block has a place in the ledger's chain, which costs the same for three samples as for three thousand. So the hours
 of a channel that writes once a minute lie together; those of one that writes each second stay alone, and a look at
-one hour decodes little.
+one hour decodes little. No block spans a long pause: what another file recorded there stays seen.
 """
 
 from __future__ import annotations
@@ -20,20 +20,20 @@ from storage.chunks import BITS, REGULAR, Block, Integers, as_integers, block_he
 FEW = 240
 """Samples in an hour that may lie in a block with its neighbours: one each 15 s."""
 NEAR = 15 * MINUTE
-"""How far the last sample of an hour may be from the first of the next. Between its first and last sample a block
-hides what was recorded before it, so a pause that another file may fill must stay outside."""
+"""How far two samples behind each other in one block may be apart. Between its first and last sample a block hides
+what was recorded before it, so a pause that another file may fill must stay outside."""
 
 
 def blocks_of(t: Times, v: Values, decimals: int) -> Iterator[Block]:
-    """Samples as blocks of an hour of the clock (UTC), or of up to a day where they are few and near.
+    """Samples as blocks of an hour of the clock (UTC) or less, or of up to a day where they are few and near.
 
     `t` is int64 us UTC, strictly increasing, `v` float64, shapes (n,). Joining the blocks gives the samples back.
     """
     if t.size == 0:
         return
-    edges = _hour_edges(t)
+    edges = _edges(t)
     few = np.diff(edges) <= FEW
-    first, last = t[edges[1:-1]], t[edges[1:-1] - 1]  # on both sides of each border between hours
+    first, last = t[edges[1:-1]], t[edges[1:-1] - 1]  # on both sides of each border
     together = few[1:] & few[:-1] & (first // DAY == last // DAY) & (first - last <= NEAR)
     found = as_integers(v, np.isnan(v), decimals)  # of all at once: a block alone would mostly find the same
     if found is not None and found[0] != decimals:
@@ -67,15 +67,17 @@ def _as_one(blocks: list[Block], decimals: int) -> Block:
     return encode(np.concatenate([p[0] for p in parts]), np.concatenate([p[1] for p in parts]), decimals)
 
 
-def _hour_edges(t: Times) -> Integers:
-    return np.concatenate(([0], np.flatnonzero(np.diff(t // HOUR)) + 1, [t.size]))
+def _edges(t: Times) -> Integers:
+    """Where an hour or a pause ends, with both ends of the samples."""
+    parted = (np.diff(t // HOUR) > 0) | (np.diff(t) > NEAR)
+    return np.concatenate(([0], np.flatnonzero(parted) + 1, [t.size]))
 
 
 def hour_blocks(t: Times, v: Values, decimals: int) -> Iterator[Block]:
-    """Samples, shape (n,), times strictly increasing, as one block per hour of the clock (UTC)."""
+    """Samples, shape (n,), times strictly increasing, as one block per hour of the clock (UTC), parted at pauses."""
     if t.size == 0:
         return
-    edges = _hour_edges(t)
+    edges = _edges(t)
     plain = _plain_hours(t, v, decimals, edges)
     for i, (start, end) in enumerate(pairwise(edges.tolist())):
         yield plain.get(i) or encode(t[start:end], v[start:end], decimals)

@@ -123,6 +123,10 @@ def _take(
         f"{counted(made.samples, 'device sample', 'device samples')} taken, "
         f"{made.repeated:,} were in the store already; {counted(len(made.episodes), 'episode', 'episodes')}."
     )
+    if made.overlaid:
+        before = counted(made.overlaid, "device sample that was taken in before lies",
+                         "device samples that were taken in before lie")  # fmt: skip
+        text += f"\n  {before} under it and no longer count."
     if made.doubtful:
         text += f"\n  {made.doubtful} doubtful row(s), taken and marked:"
         text += "".join(f"\n    {_row(d, reader)}" for d in intake.doubts[:_DOUBTS_SHOWN])
@@ -136,7 +140,7 @@ def _take(
         text += "".join(f"\n    {_row(r, reader)}" for r in intake.aside[:_DOUBTS_SHOWN])
     return {
         "text": text, "file": str(path), "entries": made.entries, "samples": made.samples,
-        "repeated": made.repeated, "episodes": list(made.episodes),
+        "repeated": made.repeated, "overlaid": made.overlaid, "episodes": list(made.episodes),
         "doubts": [_row_json(d, reader) for d in intake.doubts],
         "left_out": [_row_json(r, reader) for r in intake.refusals],
         "aside": [_row_json(r, reader) for r in intake.aside],

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 from app.commands.context import Context
 from app.look.formats import counted, wall
 from app.operations import intake as operations
+from app.telling.withdrawn_words import withdrawn_words
 from core.record.instant import iso
 from core.record.message import refuse
 
@@ -28,13 +29,9 @@ def run(context: Context, args: argparse.Namespace) -> int:
         if len(meant) != 1:
             raise refuse("intake.unknown_source", value=args.withdraw, accepted="the beginning of one id of the list")
         made = operations.withdraw(store, context.by, context.now(), meant[0].id).value
-    entries = counted(made.entries, "entry", "entries")
-    spans = counted(made.sample_spans, "span", "spans")
-    text = f"{made.name}: {entries} and {spans} of device samples withdrawn."
-    if made.kept:
-        text += f" {made.kept} that somebody has corrected since stay as corrected."
-    value = {"file": made.name, "entries": made.entries, "sample_spans": made.sample_spans, "kept": made.kept}
-    context.answer(text, value)
+    value = {"file": made.name, "entries": made.entries, "sample_spans": made.sample_spans, "kept": made.kept,
+             "emptied": list(made.emptied), "relied_on": list(made.relied_on)}  # fmt: skip
+    context.answer(withdrawn_words(made), value)
     return 0
 
 

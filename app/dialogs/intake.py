@@ -166,6 +166,8 @@ class IntakeDialog(AskingDialog):
         counts = (
             (intake.repeated_in_store, self.tr("1 row is in the store already and is skipped."),
              self.tr("{count} rows are in the store already and are skipped.")),
+            (intake.overlaid, self.tr("1 device sample that was taken in before lies under it and no longer counts."),
+             self.tr("{count} device samples that were taken in before lie under it and no longer count.")),
             (len(intake.doubts), self.tr("1 row is in doubt: it is taken and marked."),
              self.tr("{count} rows are in doubt: they are taken and marked.")),
             (intake.aside_count, self.tr("1 value is of no channel here or has no value: it is left aside."),

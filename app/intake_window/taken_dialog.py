@@ -25,6 +25,7 @@ from app.operations import intake as operations
 from app.operations.outcome import Outcome
 from app.session.failure import Failure
 from app.session.model import SessionModel
+from app.telling.withdrawn_words import withdrawn_words
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:
@@ -41,7 +42,7 @@ class TakenDialog(FittedDialog):
         super().__init__(parent)
         self._model, self._reader = model, replace(reader, near=None)  # files of any day
         self.sources: tuple[TakenSource, ...] = ()
-        self._meant = ""
+        self._meant = self._said_after = ""
         self.setWindowTitle(self.tr("Files taken in"))
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.table = QTableWidget(0, 6)
@@ -94,6 +95,9 @@ class TakenDialog(FittedDialog):
                 self.table.setItem(row, column, item)
         self.table.resizeRowsToContents()
         self._chosen()
+        if self._said_after:
+            self.said.setText(self._said_after)
+            self._said_after = ""
 
     def _fit_rows(self, column: int, *_: int) -> None:
         """What a reading was told wraps: rows follow the width that the last column gets."""
@@ -139,9 +143,7 @@ class TakenDialog(FittedDialog):
         self._model.ask(operations.withdraw, source.id, done=self._withdrawn, failed=self._failed)
 
     def _withdrawn(self, outcome: Outcome[Withdrawn]) -> None:
-        made = outcome.value
-        text = self.tr("{name}: {entries} entries and {spans} spans of device samples withdrawn.")
-        self.said.setText(text.format(name=made.name, entries=made.entries, spans=made.sample_spans))
+        self._said_after = withdrawn_words(outcome.value)
         self._model.ask(operations.taken, done=self._show, failed=self._failed)
 
     def _failed(self, failure: Failure) -> None:

@@ -65,6 +65,8 @@ class Taken:
     episodes: tuple[str, ...]
     aside: int = 0
     source_id: str = ""
+    overlaid: int = 0
+    """Device samples of earlier files that lie under it now."""
 
 
 def read(store: Store, who: str, now: Instant, request: Path | ReadRequest) -> Outcome[Intake]:
@@ -176,6 +178,7 @@ def take(store: Store, who: str, now: Instant, request: TakeRequest) -> Outcome[
         intake.episodes,
         intake.aside_count,
         intake.source.id if receipt else "",
+        intake.overlaid,
     )
     return Outcome(taken, receipt.last_seq if receipt else store.head())
 

@@ -12,6 +12,7 @@ from core.record.message import refuse
 from storage.draft_batch import DraftBatch, DraftChunk, DraftEntry, Receipt
 from storage.intake.findings import Intake
 from storage.intake.patients import CHANNEL as IDENTIFIER
+from storage.intake.withdrawal import ALREADY_THERE
 from storage.store import Changes, Store
 
 Progress = Callable[[int, int], None]
@@ -51,6 +52,8 @@ def take_in(
         facts = {**source.facts, "left_out_rows": intake.refused_rows, "left_out_lines": lines,
                  "left_out_values": values}  # fmt: skip
         source = replace(source, facts=facts)
+    counts = {ALREADY_THERE: intake.repeated_in_store, "laid_over_samples": intake.overlaid}
+    source = replace(source, facts={**source.facts, **{name: count for name, count in counts.items() if count}})
     honoured = store.imported and store.head() == 0
     times: deque[Instant] = deque()
     drafts = _drafts(_batches(replace(intake, source=source), by, now, honoured, progress), times)

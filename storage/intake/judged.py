@@ -4,19 +4,22 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Sequence
 
+from core.record.instant import DAY
 from core.record.message import Message
 from storage.chunks import Block
 from storage.draft_batch import SourceFacts
 from storage.intake.entry_rows import EntryRows
 from storage.intake.findings import Findings, Intake, Refusal
 from storage.intake.fresh_chunks import FreshChunks
-from storage.intake.held_samples import HeldSamples
+from storage.intake.held_samples import Compared, HeldSamples
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
 from storage.store import Store
 
 _BLOCKS_AT_ONCE, _SAMPLES_AT_ONCE = 2_000, 400_000
 """Blocks and samples that are compared at once with what the store has: enough to be quick, few enough for memory."""
+_TIME_AT_ONCE = 20 * DAY
+"""From the first to the last of them: the store may hold each second of it."""
 
 
 def judged_intake(
@@ -36,7 +39,7 @@ def judged_intake(
     step()
     judged = EntryRows(rows, spool.leak_uses, existing, findings)
     entries = judged.judged()
-    chunks, known = new_chunks(spool, source.id, existing, step)
+    chunks, known, overlaid = new_chunks(spool, source.id, existing, step)
     for again in spool.repeated:
         message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
         findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
@@ -46,26 +49,27 @@ def judged_intake(
         tuple(sorted(findings.refusals, key=lambda r: r.line)), findings.refused_rows,
         judged.repeated + known + repeated,
         tuple(sorted(findings.doubts, key=lambda d: d.line)), whole,
-        tuple(aside), max(aside_count, len(aside)),
+        tuple(aside), max(aside_count, len(aside)), overlaid=overlaid,
     )  # fmt: skip
 
 
 def new_chunks(
     spool: SampleSpool, source_id: str, existing: Store | None, step: Callable[[], None]
-) -> tuple[FreshChunks, int]:
-    """The samples of hours that the store does not have just so, and how many samples it has."""
+) -> tuple[FreshChunks, int, int]:
+    """The samples that the store does not have just so, how many it has, and how many others they would lie over."""
     fresh = FreshChunks(source_id)
-    known = 0
+    known = overlaid = 0
     there = _known_episodes(spool, existing)
     for key in spool.kinds():
         held = HeldSamples(existing, *key) if existing is not None and key[0] in there else None
         for some in _in_parts(spool.blocks(key)):
             step()
-            new, count = (some, 0) if held is None else held.without_held(some)
-            known += count
-            for block in new:
+            found = Compared(some) if held is None else held.compared(some)
+            known += found.known
+            overlaid += found.overlaid
+            for block in found.fresh:
                 fresh.add(key, block)
-    return fresh, known
+    return fresh, known, overlaid
 
 
 def _known_episodes(spool: SampleSpool, existing: Store | None) -> frozenset[str]:
@@ -79,6 +83,9 @@ def _in_parts(blocks: Iterable[Block]) -> Iterator[list[Block]]:
     waiting: list[Block] = []
     count = 0
     for block in blocks:
+        if waiting and block.t1 - waiting[0].t0 > _TIME_AT_ONCE:
+            yield waiting
+            waiting, count = [], 0
         waiting.append(block)
         count += block.n
         if len(waiting) >= _BLOCKS_AT_ONCE or count >= _SAMPLES_AT_ONCE:

@@ -18,6 +18,8 @@ from storage.reading_sources import SampleSpan
 from storage.rules import WITHDRAWN_WHOLE
 from storage.store import Store
 
+ALREADY_THERE = "already_there"
+"""The fact of a source that counts what the store had already, so that it was not taken twice."""
 _NOT_YET = 1 << 62
 
 
@@ -25,7 +27,8 @@ _NOT_YET = 1 << 62
 class Withdrawn:
     """What was withdrawn. `kept` counts entries that somebody has corrected since, which stay as corrected.
 
-    `emptied` are the episodes of which nothing stands any more: no screen shows them.
+    `emptied` are the episodes of which nothing stands any more: no screen shows them. `relied_on` names files that
+    were taken later and of which some values were there already by this one: they were not taken twice.
     """
 
     name: str
@@ -34,6 +37,7 @@ class Withdrawn:
     kept: int
     receipt: Receipt
     emptied: tuple[str, ...] = ()
+    relied_on: tuple[str, ...] = ()
 
 
 def withdraw_source(store: Store, source_id: str, *, by: str, now: Instant) -> Withdrawn:
@@ -63,7 +67,14 @@ def withdraw_source(store: Store, source_id: str, *, by: str, now: Instant) -> W
     kept = sum(chains.end(e).id not in ends and chains.end(e).action is not Action.WITHDRAW for e in brought)
     touched = dict.fromkeys([d.entry.episode for d in drafts])
     emptied = tuple(key for key in touched if store.episode(key).is_empty)
-    return Withdrawn(source.name, len(inverses), len(spans), kept, receipt, emptied)
+    later = [s for s in sources if s.first_seq > source.last_seq and s.id not in gone and s.facts.get(ALREADY_THERE)]
+    relied = tuple(dict.fromkeys(s.name for s in later if _episodes(store, s.id) & touched.keys()))
+    return Withdrawn(source.name, len(inverses), len(spans), kept, receipt, emptied, relied)
+
+
+def _episodes(store: Store, source_id: str) -> set[str]:
+    entries, spans = store.source_entries(source_id), store.source_spans(source_id)
+    return {e.episode for e in entries} | {s.episode for s in spans}
 
 
 @dataclass

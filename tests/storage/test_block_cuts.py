@@ -56,21 +56,27 @@ def test_both_cuts_give_the_samples_back_and_agree(made: Samples) -> None:
 @settings(max_examples=150, deadline=None)
 @given(series())
 def test_no_block_hides_more_than_it_should(made: Samples) -> None:
-    """None passes midnight, a pause of hours, or an hour of many samples: what lay there before stays seen."""
+    """None passes midnight, a long pause, or an hour of many samples: what lay there before stays seen."""
     for block in blocks_of(*made, 1):
         t, _v, _decimals = decode(block.blob, block.t0)
         assert block.t0 // DAY == block.t1 // DAY
+        assert np.diff(t).max(initial=0) <= NEAR
         if hours_of(block) > 1:
             _hour, counts = np.unique(t // HOUR, return_counts=True)
             assert counts.max() <= FEW
-            border = np.diff(t // HOUR) > 0
-            assert np.diff(t)[border].max() <= NEAR
 
 
 def test_a_day_by_the_minute_is_one_block_and_a_day_by_the_second_is_twenty_four() -> None:
     for step, blocks in ((MINUTE, 1), (SECOND, 24)):
         t = T0 + np.arange(DAY // step, dtype=np.int64) * step
         assert len(list(blocks_of(t, np.full(t.size, 18.0), 0))) == blocks
+
+
+@pytest.mark.parametrize("step", [SECOND, MINUTE])
+def test_a_pause_inside_an_hour_parts_blocks(step: int) -> None:
+    t = T0 + np.concatenate((np.arange(0, 10 * MINUTE, step), np.arange(50 * MINUTE, HOUR, step)))
+    assert [(b.t0, b.t1) for b in blocks_of(t, np.full(t.size, 18.0), 0)] == [
+        (T0, T0 + 10 * MINUTE - step), (T0 + 50 * MINUTE, T0 + HOUR - step)]  # fmt: skip
 
 
 @pytest.mark.parametrize(("pause", "blocks"), [(NEAR, 1), (NEAR + MINUTE, 2), (3 * HOUR, 2)])

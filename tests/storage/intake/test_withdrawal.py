@@ -166,3 +166,18 @@ def test_sources_are_listed_with_what_they_brought(tmp_path: Path, store: Store)
     with pytest.raises(RecordError) as refused:
         withdraw_source(store, "nobody", by="CD", now=NOW)
     assert refused.value.message.key == "intake.unknown_source"
+
+
+def test_who_relied_on_a_withdrawn_file_is_named(tmp_path: Path, store: Store) -> None:
+    first = read(trend(tmp_path / "a.csv", 0, 60), store)
+    take_in(store, first, by="AB", now=NOW)
+    grown = read(trend(tmp_path / "grown.csv", 0, 90), store)
+    assert (grown.sample_count, grown.repeated_in_store) == (90, 180)
+    take_in(store, grown, by="AB", now=NOW)
+    made = withdraw_source(store, first.source.id, by="CD", now=NOW)
+    assert made.relied_on == ("grown.csv",)
+    assert store.samples("E1", channel="leak")[0].t.size == 30, "what was there already was not taken twice"
+    again = read(trend(tmp_path / "grown.csv", 0, 90), store)
+    take_in(store, again, by="AB", now=NOW)
+    assert store.samples("E1", channel="leak")[0].t.size == 90
+    assert withdraw_source(store, again.source.id, by="CD", now=NOW).relied_on == ()
