@@ -151,7 +151,7 @@ def _large(seen: Observed, rule: DueRule, response: ResponseFigure) -> bool:
 
 
 def _oxygen_not_comparable(steps: tuple[Step, ...]) -> bool:
-    """A known FiO2 gave way to a flow, or the other way: whether it rose cannot be told, so it is not taken for no."""
+    """A known FiO2 gave way to a flow, or the other way: whether it rose cannot be told, so it may have."""
     return any(s.channel == "fio2" and (s.before is None) is not (s.after is None) for s in steps)
 
 
