@@ -51,21 +51,29 @@ class StoreDeeds(Doer):
         self._keeping.lock_now(self.model.session.person)
 
     def do_lock_after(self) -> None:
-        """Ask after how many minutes; say where nothing would lock."""
+        """Ask after how many minutes; where nobody signs in, after how many the screen is hidden."""
+        kept, least = self.window.preferences.lock_minutes, 1
         told = self.tr("Minutes without key or mouse")
-        if self.window.model is not None and self._keeping.way is Way.NOTHING:
-            told = self.tr("This store has neither people nor a passphrase: it does not lock by itself.\nFor stores "
-                           "that have: minutes without key or mouse")  # fmt: skip
-        minutes, given = QInputDialog.getInt(
-            self.window, self.tr("Lock after"), told, self.window.preferences.lock_minutes, 1, MOST_LOCK_MINUTES
-        )
+        if self._hides_alone:
+            kept, least = self.window.preferences.hide_minutes, 0
+            told = self.tr("This store has neither people nor a passphrase, so it cannot be locked. Its screen is\n"
+                           "hidden, and any key or a click shows it again.\nMinutes without key or mouse (0: never, "
+                           "for a display on a wall)")  # fmt: skip
+        minutes, given = QInputDialog.getInt(self.window, self.tr("Lock after"), told, kept, least, MOST_LOCK_MINUTES)
         if given:
             self.lock_after(minutes)
 
+    @property
+    def _hides_alone(self) -> bool:
+        return self.window.model is not None and self._keeping.way is Way.NOTHING
+
     def lock_after(self, minutes: int) -> None:
-        """Lock after so many minutes from now on."""
-        self.window.prefer(lock_minutes=minutes)
-        self._keeping.set_lock_minutes(minutes)
+        """Lock, or hide where nobody signs in, after so many minutes from now on."""
+        if self._hides_alone:
+            self.window.prefer(hide_minutes=minutes)
+        else:
+            self.window.prefer(lock_minutes=minutes)
+        self._keeping.follow_preferences()
 
     # backups and damage
 

@@ -175,9 +175,9 @@ class Keeping(QObject):
         if self.drafts is not None:
             self.drafts.keep()
 
-    def set_lock_minutes(self, minutes: int) -> None:
-        """Lock after another time."""
-        self.locking.set_minutes(minutes)
+    def follow_preferences(self) -> None:
+        """Lock, or hide the screen, after the minutes that are preferred now."""
+        self.locking.follow_preferences()
 
     def take_proof(self, initials: str) -> None:
         """Somebody has just made their PIN."""
@@ -204,7 +204,7 @@ class Keeping(QObject):
             self._retry.start()
         if self.forbids_recording:
             self._window.close_or_open_strip()
-        self.set_lock_minutes(self._window.preferences.lock_minutes)
+        self.follow_preferences()
         if not session.read_only:
             self.drafts.look_for_lost()
         if self.backups is not None:

@@ -7,6 +7,7 @@ import time
 from enum import StrEnum
 
 from PySide6.QtCore import Qt, QTimer, Signal
+from PySide6.QtGui import QKeyEvent, QMouseEvent
 from PySide6.QtWidgets import (
     QFormLayout,
     QFrame,
@@ -127,7 +128,8 @@ class LockPage(QWidget):
         self.secret.setAccessibleName(word)
         self.secret.setMaxLength(MOST_PIN if way is Way.PIN else 1_000)
         signs_in = way is Way.PIN and why in (Why.BEGIN, Why.CHANGE)
-        self.title.setText(self.tr("Sign in") if signs_in else self.tr("Locked"))
+        hidden = self.tr("Screen hidden") if way is Way.NOTHING else self.tr("Locked")
+        self.title.setText(self.tr("Sign in") if signs_in else hidden)
         self.told.setText(" ".join(t for t in (self._why_words(why, minutes), self._way_words(way), more) if t))
         self.by_code.setVisible(way is Way.PIN and has_code)
         self.initials.setText(person if way is Way.PIN else "")
@@ -148,7 +150,24 @@ class LockPage(QWidget):
             return self.tr("Whoever signs in logs from now on.")
         if way is Way.PASSPHRASE:
             return self.tr("The store's passphrase or recovery code opens it again.")
-        return self.tr("This store has neither people nor a passphrase: whoever is here can open it.")
+        return self.tr(
+            "No sign-in is set up (this store has neither people nor a passphrase): any key or a click shows the "
+            "screen again, to whoever is here."
+        )
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Where nobody signs in, any key shows the screen again; it does nothing else."""
+        if self.way is Way.NOTHING:
+            self.opened.emit()
+        else:
+            super().keyPressEvent(event)
+
+    def mousePressEvent(self, event: QMouseEvent) -> None:
+        """The same for a click anywhere."""
+        if self.way is Way.NOTHING:
+            self.opened.emit()
+        else:
+            super().mousePressEvent(event)
 
     def end(self) -> None:
         """Forget what was typed here."""

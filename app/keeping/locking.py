@@ -73,18 +73,29 @@ class Locking(QObject):
         more = ""
         if self._window.forget_handovers():
             more = self.tr("A closed handover was opened in another program: close it there too.")
-        self.lock.page.begin(self.way, person, why, minutes=self._window.preferences.lock_minutes,
-                             has_code=True, more=more)  # fmt: skip
+        self.lock.page.begin(self.way, person, why, minutes=self.minutes, has_code=True, more=more)
         self._window.tell_locked()
 
-    def set_minutes(self, minutes: int) -> None:
-        """Lock after another time."""
-        if self._model is not None and self.way is not Way.NOTHING:
-            self.watch.start(minutes)
+    @property
+    def minutes(self) -> int:
+        """After how many minutes without key or mouse every screen is hidden; 0: never. The sample, which is nobody's
+        record, stays in sight."""
+        if self._model is None:
+            return 0
+        if self.way is not Way.NOTHING:
+            return self._window.preferences.lock_minutes
+        return 0 if self._model.session.is_demo else self._window.preferences.hide_minutes
+
+    def follow_preferences(self) -> None:
+        """Watch for stillness as the preferences say now, and as the store's people do."""
+        if self.minutes:
+            self.watch.start(self.minutes)
+        else:
+            self.watch.stop()
 
     def idle(self) -> None:
         """Nobody was there for too long."""
-        if self._model is not None and self.way is not Way.NOTHING:
+        if self._model is not None and self.minutes:
             self.lock_now(self._model.session.person, Why.IDLE)
 
     def ask_for_proof(self) -> None:
@@ -104,6 +115,7 @@ class Locking(QObject):
             self._proven = initials
             self._model.set_person(initials)
             self._window.prefer(person=initials)
+            self.follow_preferences()
             self._model.ask(people.code_once, None, done=self._code_told)
 
     def _code_told(self, outcome: Outcome[str]) -> None:

@@ -34,6 +34,8 @@ class Preferences:
     paper: str = "A4"
     """What a handover is printed on: the one chosen last."""
     lock_minutes: int = 10
+    hide_minutes: int = 10
+    """After how many minutes the screen is hidden where nobody signs in; 0: never, for a display on a wall."""
     backup_folder: str = ""
     witness_file: str = ""
 
@@ -118,6 +120,8 @@ def _accepted(key: str, value: Any) -> bool:
         return bool(value in ("mmHg", "kPa"))
     if key == "lock_minutes":
         return bool(1 <= value <= MOST_LOCK_MINUTES)
+    if key == "hide_minutes":
+        return bool(0 <= value <= MOST_LOCK_MINUTES)
     if key == "window":
         return len(value) in (0, 4) and all(isinstance(n, int) for n in value)
     if key == "shift_starts":

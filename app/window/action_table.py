@@ -77,7 +77,7 @@ DEEDS: Final = (
     Deed("lock", "store", QT_TRANSLATE_NOOP("action", "Lock"), ("Ctrl+Shift+X",),
          QT_TRANSLATE_NOOP("action", "Hide every screen now. What is being typed is kept.")),
     Deed("lock_after", "store", QT_TRANSLATE_NOOP("action", "Lock after..."), ("Ctrl+Shift+I",),
-         QT_TRANSLATE_NOOP("action", "After how many minutes without key or mouse the window locks."),
+         QT_TRANSLATE_NOOP("action", "After how many minutes without key or mouse the window locks, or only hides."),
          needs_store=False),
     Deed("backups", "store", QT_TRANSLATE_NOOP("action", "Backups..."), ("Ctrl+Shift+A",),
          QT_TRANSLATE_NOOP("action", "The backups taken by the hour, where they lie, one more now."), parted=True),

@@ -9,7 +9,7 @@ from contextlib import contextmanager
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QTimer
+from PySide6.QtCore import Qt, QTimer
 from PySide6.QtWidgets import QApplication
 
 if TYPE_CHECKING:
@@ -18,6 +18,7 @@ if TYPE_CHECKING:
 
 def application() -> QApplication:
     """The one application of this process, made when there is none."""
+    QApplication.setAttribute(Qt.ApplicationAttribute.AA_DontUseNativeDialogs)  # the lock can hide only what is ours
     found = QApplication.instance()
     if isinstance(found, QApplication):
         return found

@@ -3,10 +3,10 @@
 from functools import partial
 
 import pytest
-from PySide6.QtCore import QEvent, QPointF, Qt
+from PySide6.QtCore import QEvent, QPoint, QPointF, Qt, QTimer
 from PySide6.QtGui import QGuiApplication, QKeyEvent, QMouseEvent
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication, QLabel
+from PySide6.QtWidgets import QApplication, QFileDialog, QLabel
 
 from app.dialogs.people import PeopleDialog
 from app.keeping.lock import IdleWatch
@@ -17,6 +17,7 @@ from app.session.model import SessionModel
 from app.session.runner import Runner
 from app.session.state import Session
 from app.window.main import MainWindow
+from app.window.start import application
 from storage import people
 from storage.keys import Cost
 from storage.store import Store
@@ -158,16 +159,59 @@ def test_an_encrypted_store_without_people_opens_by_passphrase_or_code(qtbot, tm
     window.close()
 
 
-def test_a_plain_store_without_people_is_hidden_at_will_and_never_by_itself(qtbot, tmp_path):
+def test_a_plain_store_without_people_is_hidden_and_any_key_or_click_shows_it(qtbot, tmp_path):
     with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as window:
+        page, watch = window.keeping.lock.page, window.keeping.watch
+        window.strip.set_text("16/6")
+        ways_back = (
+            lambda: qtbot.keyClick(QApplication.focusWidget(), Qt.Key.Key_7),
+            lambda: qtbot.mouseClick(page, Qt.MouseButton.LeftButton, pos=QPoint(4, 4)),
+            page.go.click,
+        )
+        for back in ways_back:
+            watch._last = (watch._last[0] - 601, watch._last[1] - 601)
+            watch.look()
+            assert window.keeping.lock.is_locked
+            assert "Bed 7" not in words_in_sight(window)
+            assert "No sign-in is set up" in page.told.text()
+            assert page.title.text() == "Screen hidden"
+            back()
+            assert not window.keeping.lock.is_locked
+            assert window.pages.isVisible()
+            assert window.strip.line.text() == "16/6", "the key that shows the screen again types nothing"
+
+
+def test_a_dialog_that_asks_for_a_file_goes_when_the_lock_comes(qtbot, with_people):
+    """A dialog of the operating system would stay, with the names of files on it, and could still be used."""
+    application()
+    assert QApplication.testAttribute(Qt.ApplicationAttribute.AA_DontUseNativeDialogs)
+    with open_window(qtbot, with_people) as window:
+        sign_in(qtbot, window, "AB", PIN)
+        until(qtbot, lambda: not window.keeping.lock.is_locked)
+        seen = []
+
+        def lock():
+            seen.extend(d for d in QApplication.topLevelWidgets() if isinstance(d, QFileDialog) and d.isVisible())
+            window.keeping.lock_now("AB")
+            seen.append(any(isinstance(d, QFileDialog) and d.isVisible() for d in QApplication.topLevelWidgets()))
+
+        QTimer.singleShot(300, lock)
+        chosen, _ = QFileDialog.getOpenFileName(window, "Take in", str(with_people.parent))
+        assert (len(seen), seen[-1], chosen) == (2, False, "")
+        assert window.keeping.lock.is_locked
+        sign_in(qtbot, window, "AB", PIN)
+        until(qtbot, lambda: not window.keeping.lock.is_locked)
+
+
+def test_a_display_on_a_wall_is_never_hidden_by_itself(qtbot, tmp_path):
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as window:
+        window.doers.store.lock_after(0)
+        assert (window.preferences.hide_minutes, window.preferences.lock_minutes) == (0, 10)
+        assert not window.keeping.watch._look.isActive()
         window.keeping.locking.idle()
         assert not window.keeping.lock.is_locked
-        assert not window.keeping.watch._look.isActive()
         window.actions_by_key["lock"].trigger()
-        assert "Bed 7" not in words_in_sight(window)
-        assert "neither people nor a passphrase" in window.keeping.lock.page.told.text()
-        window.keeping.lock.page.go.click()
-        assert window.pages.isVisible()
+        assert window.keeping.lock.is_locked, "at will it is hidden all the same"
 
 
 def test_the_first_person_added_must_sign_in_at_once(qtbot, tmp_path):

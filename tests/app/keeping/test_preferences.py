@@ -70,6 +70,7 @@ def test_nothing_of_a_patient_is_among_them():
         "window",
         "person",
         "lock_minutes",
+        "hide_minutes",
         "backup_folder",
         "witness_file",
     }
