@@ -2,6 +2,8 @@
 
 from typing import Final
 
+from app.words.taken import BEFORE_TAKEN, TAKEN
+
 _STATE = "pick severe=severe acidosis;acidotic=acidotic;resolved=not acidotic"
 _DOUBT = (
     "pick unconfirmed=holds a value nobody confirmed;unusual=holds an unusual value;"
@@ -19,7 +21,8 @@ EVIDENCE: Final[dict[str, str]] = {
         "{ceiling:pick no intubation=a decision with the responsible clinician, not intubation;"
         "ward support is the ceiling=telling the responsible clinician, not a higher level of care;"
         "comfort=comfort and telling whom it concerns;else=what was agreed}.",
-    "evidence.change": "{quantity:name} {before:q} ({before_at:time}) to {after:q} ({at:time}), {change:q+}"
+    "evidence.change":
+        "{quantity:name} {before:q} (" + BEFORE_TAKEN + ") to {after:q} (" + TAKEN + "), {change:q+}"
         "[[, {direction:pick up=beyond;down=beyond;else=within} measurement error ({noise:qn})]].",
     "evidence.unchanged": "{quantity:name} unchanged, {value:q} ({before_at:time} and {at:time}).",
     "evidence.event": "{event:name}[[ {text}]] at {at:time}.",
@@ -47,14 +50,15 @@ EVIDENCE: Final[dict[str, str]] = {
         "{relation} {limit:q}.",
     "evidence.support_ends": "Support ends at {at:time}.",
     "evidence.sustained": "{quantity:name} {relation} {limit:q} for {minutes:minutes} in all since {since:time}"
-        "[[, median {median:q}]].",
+        "[[, median {median:q} up to {at:time}]].",
     "evidence.think_of": "Think of {what}.",
     "evidence.timing": "{minutes:minutes} after {anchor:pick start=the start;change=the change;"
         "interface=the new interface;break_end=the break;else=the change} of {anchor_at:time}.",
     "evidence.twice": "{quantity:name} {first:q} ({first_at:time}) and {second:q} ({second_at:time}), "
         "both at or below {high:q}.",
     "evidence.unknown": "{quantity:name} is not known.",
-    "evidence.value": "{quantity:name} {value:qt} at {at:time}, {relation} {limit:q}.",
+    "evidence.value": "{quantity:name} {value:qt}[[ (median from {since:time} to {at:clock})]]"
+        "[[!since| at {at:time}]], {relation} {limit:q}.",
     "evidence.venous": "A venous sample.",
 }  # fmt: skip
 

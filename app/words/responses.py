@@ -2,6 +2,8 @@
 
 from typing import Final
 
+from app.words.taken import BEFORE_TAKEN, TAKEN
+
 _SIDE = "baseline=the baseline gas;before=the baseline gas;gas=this gas;after=this gas;else=a gas"
 _WHO = "baseline=The baseline gas;gas=This gas;else=A gas"
 _PRESSURES = "[[IPAP {ipap_before:trim} to {ipap_after:trim}, ]][[EPAP {epap_before:trim} to {epap_after:trim}, ]]"
@@ -64,12 +66,14 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.reference": "The gas of {gas_at:time} is the reference: support was running when logging began.",
     "response.serves_as_baseline": "The gas of {gas_at:time} serves as the baseline.",
     "response.spo2_range":
-        "SpO2[[ {before:0} then]] {after:0} %, {where} {low:0} to {high:0} %.",
+        "SpO2 {before:0} % (" + BEFORE_TAKEN + ") to {after:0} % (" + TAKEN + "), {where} {low:0} to {high:0} %.",
+    "response.spo2_range_after": "SpO2 {after:0} % (" + TAKEN + "), {where} {low:0} to {high:0} %.",
     "response.superseded": "No gas before the next change at {next_at:time}.",
     "response.support_ended": "Support ended at {ended_at:time} before a gas.",
     "response.support_was_running": "Support was running when logging began.",
     "response.tiring_not_excluded":
-        "Respiratory rate {before:0} to {after:0}/min while PaCO2 rose and P/F did not: tiring not excluded.",
+        "Respiratory rate {before:0} (" + BEFORE_TAKEN + ") to {after:0}/min (" + TAKEN + ") while PaCO2 rose and "
+        "P/F did not: tiring not excluded.",
     "response.unconfirmed": "{side:pick " + _WHO + "} of {gas_at:time} holds a value nobody confirmed.",
     "response.unusual": "{side:pick " + _WHO + "} of {gas_at:time} holds an unusual value.",
     "response.implausible": "{side:pick " + _WHO + "} of {gas_at:time} holds values that hardly belong together.",

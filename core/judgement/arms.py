@@ -170,7 +170,7 @@ def _tiring(seen: Oxygenation, policy: Policy, co2: Arm, pf_sign: int) -> Messag
     if co2.sign != 1 or pf_sign == 1 or before is None or after is None or after.value >= before.value:
         return None
     noise = rr_noise(policy.noise, before.device and after.device)
-    return why.tiring(before.value, after.value, noise, direction(after.value - before.value, noise) == -1)
+    return why.tiring(before, after, noise, direction(after.value - before.value, noise) == -1)
 
 
 def spo2_arm(seen: Oxygenation, policy: Policy) -> Arm:
@@ -180,14 +180,16 @@ def spo2_arm(seen: Oxygenation, policy: Policy) -> Arm:
     after = seen.spo2_after.value
     off_after, where = _off_range(after, seen, seen.given_after)
     if seen.spo2_before is None:
-        return Arm(None, (why.missing("spo2", "baseline"), why.spo2_range(None, after, seen.low, seen.high, where)))
+        return Arm(
+            None, (why.missing("spo2", "baseline"), why.spo2_range(None, seen.spo2_after, seen.low, seen.high, where))
+        )
     before = seen.spo2_before.value
     off_before, _ = _off_range(before, seen, seen.given_before)
     noise = policy.noise.spo2.value
     sign = direction(after - before, noise)
     moved = 0 if sign == 0 else (off_after < off_before) - (off_after > off_before)
     verdict = {1: BETTER, -1: WORSE, 0: NO_CHANGE}[moved]
-    reasons = (why.spo2_range(before, after, seen.low, seen.high, where),
+    reasons = (why.spo2_range(seen.spo2_before, seen.spo2_after, seen.low, seen.high, where),
                why.compared("spo2", before, after, noise, sign))  # fmt: skip
     return Arm(verdict, reasons, moved)
 

@@ -6,6 +6,7 @@ Pressures in mmHg, rates per minute, SpO2 in %, FiO2 as a fraction, instants in 
 from __future__ import annotations
 
 from core.judgement.shapes import GasFigure
+from core.judgement.vitals_near import Found
 from core.record.instant import Instant
 from core.record.message import Message, Value
 
@@ -52,10 +53,13 @@ def pf_not_compared(site: str) -> Message:
     return Message("response.pf_not_compared", {"site": site})
 
 
-def spo2_range(before: float | None, after: float, low: float, high: float, where: str) -> Message:
+def spo2_range(before: Found | None, after: Found, low: float, high: float, where: str) -> Message:
     """SpO2 against its range. `where`: below, within, above (above counts only while oxygen is given)."""
-    values: Values = {"before": before, "after": after, "low": low, "high": high, "where": where}
-    return Message("response.spo2_range", values)
+    values: Values = {"after": after.value, "at": after.at, "since": after.since, "low": low, "high": high,
+                      "where": where}  # fmt: skip
+    if before is None:
+        return Message("response.spo2_range_after", values)
+    return Message("response.spo2_range", {**values, "before": before.value, **_taken(before, after)})
 
 
 def in_doubt(baseline: GasFigure, gas: GasFigure) -> Message:
@@ -69,10 +73,16 @@ def towards_normal(before: float, after: float) -> Message:
     return Message("response.towards_normal", {"before": before, "after": after})
 
 
-def tiring(rr_before: float, rr_after: float, noise: float, beyond: bool) -> Message:
+def tiring(before: Found, after: Found, noise: float, beyond: bool) -> Message:
     """The rate fell while PaCO2 rose and P/F did not: tiring is not excluded."""
-    values: Values = {"before": rr_before, "after": rr_after, "noise": noise, "beyond_noise": beyond}
+    values: Values = {"before": before.value, "after": after.value, **_taken(before, after), "noise": noise,
+                      "beyond_noise": beyond}  # fmt: skip
     return Message("response.tiring_not_excluded", values)
+
+
+def _taken(before: Found, after: Found) -> Values:
+    """When two values were taken, and since when each is a median, if it is one."""
+    return {"before_at": before.at, "before_since": before.since, "at": after.at, "since": after.since}
 
 
 def no_baseline(kind: str, limit_h: float, because: str, newest_at: Instant | None) -> Message:

@@ -14,6 +14,7 @@ from core.judgement.markers.spells import Point, Spell, from_points, from_runs, 
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.shapes import GasFigure
 from core.judgement.sustained import spells as crossings
+from core.judgement.vitals_near import Found
 from core.record.episode import Series
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
@@ -120,7 +121,9 @@ def spo2_fall_after_pressure(seen: Observed, rule: MarkerRule) -> Iterable[Spell
     for k in np.flatnonzero(lowest + rule.limits["points"] <= highest).tolist():
         median = float(np.median(spo2.v[starts[k] : firsts[k]]))
         if lowest[k] + rule.limits["points"] <= median:
-            found += _falls(seen, rule, spo2.cut(slice(int(firsts[k]), None)), median, int(raised[k]))
+            before = slice(int(starts[k]), int(firsts[k]))
+            level = Found(median, int(raised[k]), True, int(spo2.t[before][0]))
+            found += _falls(seen, rule, spo2.cut(slice(int(firsts[k]), None)), level)
     return united(found)
 
 
@@ -134,8 +137,9 @@ def _lowest(v: Values, firsts: Times, ends: Times) -> Values:
     return out
 
 
-def _falls(seen: Observed, rule: MarkerRule, after: Series, median: float, at: Instant) -> list[Spell]:
+def _falls(seen: Observed, rule: MarkerRule, after: Series, level: Found) -> list[Spell]:
     """Falls below both the range and the level before the pressure was raised, that begin within the hour."""
+    median, at = level.value, level.at
     after = after.cut(~seen.off_mask(after.t))
     limit = np.minimum(median - rule.limits["points"] + 1e-9, seen.targets(after.t)[0])
     n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
@@ -145,7 +149,7 @@ def _falls(seen: Observed, rule: MarkerRule, after: Series, median: float, at: I
             break
         i, j = np.searchsorted(after.t, [s.start, s.end if s.end is not None else after.t[-1] + 1])
         lowest = int(i) + int(np.argmin(after.v[i:j]))
-        told = say.changed("spo2", median, at, float(after.v[lowest]), int(after.t[lowest]))
+        told = say.moved("spo2", level, Found(float(after.v[lowest]), int(after.t[lowest]), False))
         found.append(Spell(s.start, s.end, (told, *_after_raise(at, s.start))))
     return found
 

@@ -59,7 +59,7 @@ def _no_better(seen: Observed, low: GasFigure, gas: GasFigure) -> tuple[list[Mes
     if rated and before is not None and after is not None:
         noise = rr_noise(seen.policy.noise, before.device and after.device)
         if direction(after.value - before.value, noise) != -1:
-            said.append(say.changed("rr", before.value, before.at, after.value, after.at, noise))
+            said.append(say.moved("rr", before, after, noise))
     comparable = arms.pf_comparable(low, gas, seen.policy) is None
     if comparable and low.pf_mmHg is not None and gas.pf_mmHg is not None:
         noise = pf_noise(seen.policy.noise, low.pf_mmHg)
@@ -113,5 +113,5 @@ def _rate_change(seen: Observed, before: GasFigure, gas: GasFigure) -> tuple[Mes
     if then is None or now is None or now.at <= then.at:
         return None
     noise = rr_noise(seen.policy.noise, then.device and now.device)
-    told = say.changed("rr", then.value, then.at, now.value, now.at, noise)
+    told = say.moved("rr", then, now, noise)
     return told, direction(now.value - then.value, noise) == -1

@@ -13,6 +13,7 @@ from typing import Final
 
 from core.judgement.policy_sections import PressureLimit
 from core.judgement.shapes import GasFigure
+from core.judgement.vitals_near import Found
 from core.physiology.constants import KPA_IN_MMHG
 from core.record.instant import Instant
 from core.record.message import Message, Value
@@ -21,8 +22,19 @@ BELOW, ABOVE, AT_MOST, AT_LEAST = "below", "above", "at or below", "at or above"
 
 KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
     {
-        "evidence.value": ("quantity", "value", "relation", "limit", "limit_kpa", "at", "text"),
-        "evidence.change": ("quantity", "before", "before_at", "after", "at", "change", "noise", "direction"),
+        "evidence.value": ("quantity", "value", "relation", "limit", "limit_kpa", "at", "since", "text"),
+        "evidence.change": (
+            "quantity",
+            "before",
+            "before_at",
+            "before_since",
+            "after",
+            "at",
+            "since",
+            "change",
+            "noise",
+            "direction",
+        ),
         "evidence.unchanged": ("quantity", "value", "before_at", "at"),
         "evidence.timing": ("anchor", "anchor_at", "minutes"),
         "evidence.sustained": ("quantity", "relation", "limit", "minutes", "since", "at", "median"),
@@ -80,11 +92,11 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
 
 def value_is(
     quantity: str, value: float, relation: str, limit: float, at: Instant, text: str | None = None,
-    limit_kpa: float | None = None,
+    limit_kpa: float | None = None, since: Instant | None = None,
 ) -> Message:  # fmt: skip
-    """A value against its limit."""
+    """A value against its limit. `since`: the oldest sample of a median that ends at `at`; None for one value."""
     values: dict[str, Value] = {"quantity": quantity, "value": value, "relation": relation, "limit": limit,
-              "limit_kpa": limit_kpa, "at": at, "text": text}  # fmt: skip
+              "limit_kpa": limit_kpa, "at": at, "since": since, "text": text}  # fmt: skip
     return Message("evidence.value", values)
 
 
@@ -99,17 +111,28 @@ def pressure_is(quantity: str, mmhg: float, relation: str, limit: PressureLimit,
 
 
 def changed(
-    quantity: str, before: float, before_at: Instant, after: float, at: Instant, noise: float | None = None
-) -> Message:
-    """A value against an earlier one. `direction`: up, down or inside noise. One that is the same says only that."""
+    quantity: str, before: float, before_at: Instant, after: float, at: Instant, noise: float | None = None,
+    *, before_since: Instant | None = None, since: Instant | None = None,
+) -> Message:  # fmt: skip
+    """A value against an earlier one. `direction`: up, down or inside noise. One that is the same says only that.
+
+    `before_since` and `since`: the oldest sample of each where it is a median; None for one value.
+    """
     change = round(after - before, 6)
     if change == 0:
         return Message("evidence.unchanged", {"quantity": quantity, "value": after, "before_at": before_at, "at": at})
     inside = noise is not None and round(abs(change) - noise, 6) <= 0
     direction = "inside noise" if inside else "up" if change > 0 else "down"
-    values: dict[str, Value] = {"quantity": quantity, "before": before, "before_at": before_at, "after": after,
-              "at": at, "change": change, "noise": noise, "direction": direction}  # fmt: skip
+    values: dict[str, Value] = {"quantity": quantity, "before": before, "before_at": before_at,
+              "before_since": before_since, "after": after, "at": at, "since": since, "change": change,
+              "noise": noise, "direction": direction}  # fmt: skip
     return Message("evidence.change", values)
+
+
+def moved(quantity: str, before: Found, after: Found, noise: float | None = None) -> Message:
+    """A rate or an SpO2 against an earlier one, each counted or a median of the device."""
+    return changed(quantity, before.value, before.at, after.value, after.at, noise,
+                   before_since=before.since, since=after.since)  # fmt: skip
 
 
 def timing(anchor: str, anchor_at: Instant, minutes: float) -> Message:

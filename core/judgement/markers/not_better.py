@@ -133,7 +133,7 @@ def _settling(seen: Observed, c: Comparison) -> tuple[bool, tuple[Message, ...]]
         said.append(say.unknown("rr"))
     else:
         noise = rr_noise(seen.policy.noise, before.device and after.device)
-        said.append(say.changed("rr", before.value, before.at, after.value, after.at, noise))
+        said.append(say.moved("rr", before, after, noise))
         least = seen.policy.markers["ph_not_better_settling"].limits["rr_least"]
         slower = direction(after.value - before.value, noise) == -1 and after.value >= least
     co2_lower = False

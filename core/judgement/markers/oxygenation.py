@@ -173,4 +173,4 @@ def _rise(seen: Observed, at: Instant, span: Instant, rise: float) -> Point | No
         return Point(at, None)
     noise = seen.policy.noise.spo2.value
     held = after.value - before.value <= noise
-    return Point(at, held, (told, say.changed("spo2", before.value, before.at, after.value, after.at, noise)))
+    return Point(at, held, (told, say.moved("spo2", before, after, noise)))

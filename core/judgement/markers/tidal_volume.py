@@ -100,17 +100,17 @@ def vt_high_hypoxaemic(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         if not high[k]:
             points.append(Point(at, False))
         elif k and high[k - 1] and quarters.bin[k] - quarters.bin[k - 1] == 1:
-            points.append(_with_pf(seen, rule, at, float(quarters.v[k])))
+            points.append(_with_pf(seen, rule, at, float(quarters.v[k]), int(quarters.first[k])))
     return from_points(points)
 
 
-def _with_pf(seen: Observed, rule: MarkerRule, at: int, per_kg: float) -> Point:
+def _with_pf(seen: Observed, rule: MarkerRule, at: int, per_kg: float, since: int) -> Point:
     gas = next((g for g in reversed(seen.gases) if g.at <= at and g.pf_mmHg is not None), None)
     if gas is None or gas.pf_mmHg is None or at - gas.at > rule.limits["pf_within_h"] * HOUR:
         return Point(at, None)
     fits = inside(seen, rule.population, at) and _early(seen, rule, at)
     met = gas.pf_mmHg <= rule.limits["pf"] and (fits or rule.outside == "remark")
-    told = [say.value_is("vte_per_kg", round(per_kg, 2), say.ABOVE, rule.limits["ml_per_kg"], at),
+    told = [say.value_is("vte_per_kg", round(per_kg, 2), say.ABOVE, rule.limits["ml_per_kg"], at, since=since),
             say.value_is("pf", gas.pf_mmHg, say.AT_MOST, rule.limits["pf"], gas.at)]  # fmt: skip
     if leak_definition(seen.ctx) is None:
         told.append(say.unknown("leak"))

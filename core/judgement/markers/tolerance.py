@@ -93,8 +93,8 @@ def _ready(seen: Observed, rule: MarkerRule, gas: GasFigure) -> tuple[bool, tupl
     met = rate.value < rule.limits["rr"] and spo2.value >= float(low[0])
     return met, (
         say.value_is("ph", gas.ph, say.ABOVE, ph, gas.at, gas.ph_text),
-        say.value_is("rr", rate.value, say.BELOW, rule.limits["rr"], rate.at),
-        say.value_is("spo2", spo2.value, say.AT_LEAST, float(low[0]), spo2.at),
+        say.value_is("rr", rate.value, say.BELOW, rule.limits["rr"], rate.at, since=rate.since),
+        say.value_is("spo2", spo2.value, say.AT_LEAST, float(low[0]), spo2.at, since=spo2.since),
         say.value_is("fio2", gas.fio2, say.AT_MOST, rule.limits["fio2"], gas.at),
         *say.gas_doubts(gas),
     )
