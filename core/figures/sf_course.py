@@ -31,5 +31,5 @@ def sf_course(episode: Episode, until: Instant, policy: Policy) -> tuple[Times, 
     oxygen = np.concatenate((fio2.on(spot.t), np.where(same, first, np.nan)))
     order = np.argsort(t, kind="stable")
     t, v, oxygen = t[order], v[order], oxygen[order]
-    usable = np.isfinite(oxygen) & (v <= policy.oxygen.no_sf_above_spo2.value) & ~in_any(t, ctx.support.breaks)
+    usable = np.isfinite(oxygen) & (v <= policy.oxygen.no_sf_above_spo2.value) & ~in_any(t, ctx.support.off_times)
     return t[usable], v[usable] / oxygen[usable]

@@ -62,7 +62,7 @@ def leak_figure(ctx: Context) -> LeakFigure:
     meaning, suspected = _meanings(ctx)[-1], probable_breaks(ctx)
     start = max(span_start(ctx), meaning.start)
     near = series.between(start, ctx.as_of)
-    worn = near.cut(~in_any(near.t, (*ctx.support.breaks, *suspected)) & np.isfinite(near.v))
+    worn = near.cut(~in_any(near.t, (*ctx.support.off_times, *suspected)) & np.isfinite(near.v))
     figure = _level(worn, slope_figure(ctx, points_of(ctx, worn), {}), meaning.definition)
     figure = _with_newest(figure, worn, int(ctx.policy.trend.device_median_min.value * MINUTE))
     figure = replace(figure, probable_breaks=tuple((b.start, b.end) for b in suspected))
@@ -138,7 +138,7 @@ def leak_spells(ctx: Context, n: int, m: int, extra_L_per_min: float = 0.0) -> t
     None where the meaning is not known. `extra_L_per_min` raises the limit, e.g. to the policy's limit for acting.
     """
     series = ctx.episode.number("leak").machine
-    worn = series.cut(~in_any(series.t, (*ctx.support.breaks, *probable_breaks(ctx))))
+    worn = series.cut(~in_any(series.t, (*ctx.support.off_times, *probable_breaks(ctx))))
     meanings = _meanings(ctx)
     found: list[Spell] = []
     for meaning, following in zip(meanings, (*meanings[1:], None), strict=True):

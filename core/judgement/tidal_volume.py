@@ -55,12 +55,13 @@ def codes_of(ctx: Context, t: Times, vte: Values, spot: Flags) -> NDArray[np.int
 
 
 def off_mask(ctx: Context) -> tuple[Break, ...]:
-    """Breaks, logged or probable. The leak's figure has the probable ones already where leak is logged."""
+    """Breaks, logged or probable, and what comes after the end. Where leak is logged its figure has the probable
+    ones already."""
     if len(ctx.episode.number("leak")):
         suspected = tuple(Break(start, end) for start, end in ctx.leak.probable_breaks)
     else:
         suspected = probable_breaks(ctx)
-    return (*ctx.support.breaks, *suspected)
+    return (*ctx.support.off_times, *suspected)
 
 
 def newest(ctx: Context, channel: str) -> Instant | None:

@@ -10,11 +10,13 @@ from dataclasses import dataclass, replace
 from math import isnan
 
 import numpy as np
+from numpy.typing import NDArray
 
 from core.judgement.context import Context
 from core.judgement.derived import FigureInput
 from core.judgement.device_medians import Medians, medians
 from core.judgement.probable_breaks import in_any, probable_breaks
+from core.judgement.score_inputs import Walls, barriers, nearest
 from core.judgement.shapes import RatioFigure
 from core.judgement.theil_sen import theil_sen
 from core.physiology.ventilation import base_weight, predicted_body_weight
@@ -23,6 +25,7 @@ from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 from core.record.samples import Flags, Times, Values
 
+NO_WALLS: Walls = np.empty(0, np.int64)
 ROX_CAVEAT = Message("trend.rox_validated_in_high_flow")
 """ROX was validated in high-flow nasal oxygen, not on a mask (Roca, AJRCCM 2019;199:1368)."""
 
@@ -133,7 +136,7 @@ def saturation_points(ctx: Context) -> Saturations:
     values = np.concatenate((spot.v, bins.v))[order]
     fractions = np.concatenate((fio2.on(spot.t), np.where(same, from_bins, np.nan)))[order]
     first = np.concatenate((spot.t, bins.first))[order]
-    keep = ~in_any(t[order], ctx.support.breaks)
+    keep = ~in_any(t[order], ctx.support.off_times)
     return Saturations(t[order][keep], values[keep], fractions[keep], first[keep])
 
 
@@ -171,7 +174,8 @@ def _oxygen_reasons(points: Saturations) -> dict[str, Message]:
 
 
 def _rox(ctx: Context, points: Saturations) -> RatioFigure:
-    rates = rates_at(ctx, points.t)
+    walls = _walls(ctx)
+    rates = rates_at(ctx, points.t, walls)
     reasons = _oxygen_reasons(points)
     if points.t.size and isnan(rates[-1]):
         reasons.setdefault("latest", Message("trend.rate_not_known", {"at": int(points.t[-1])}))
@@ -180,32 +184,35 @@ def _rox(ctx: Context, points: Saturations) -> RatioFigure:
     figure = slope_figure(ctx, Points(points.t[usable], ratio), reasons, ROX_CAVEAT)
     if figure.latest is None:
         return figure
-    rate = _rate_given(ctx, float(rates[-1]), int(points.t[-1]))
+    rate = _rate_given(ctx, float(rates[-1]), int(points.t[-1]), walls)
     return replace(figure, inputs={**_oxygen_inputs(points), "rr": rate}, median_of=points.newest_of)
 
 
-def _rate_given(ctx: Context, rate: float, at: Instant) -> FigureInput:
+def _walls(ctx: Context) -> Walls:
+    """What no rate may be taken across: changes, and the edges of breaks."""
+    return barriers(tuple(step.at for a in ctx.anchors for step in a.steps), ctx.support)
+
+
+def _rate_given(ctx: Context, rate: float, at: Instant, walls: Walls) -> FigureInput:
     """The rate that `rates_at` gives for a moment, with when it was counted, or of which samples it is a median."""
-    counted = _finite(ctx.episode.number("rr").spots)
-    if len(counted):
-        nearest = int(counted.t[int(np.argmin(np.abs(counted.t - at)))])
-        if abs(nearest - at) <= int(ctx.policy.freshness.vitals_min.value * MINUTE):
-            return FigureInput(rate, nearest)
+    near = nearest(ctx.episode, "rr", at, ctx.policy.freshness.vitals_min.value, walls)
+    if near.at is not None and near.median_of is None and near.value == rate:
+        return FigureInput(rate, near.at)
     span = int(ctx.policy.trend.device_median_min.value * MINUTE)
     quarter = _machine_rate(ctx).between(at // span * span, at // span * span + span - 1)
     several = len(quarter) > 1
     return FigureInput(rate, at, (int(quarter.t[0]), int(quarter.t[-1])) if several else None)
 
 
-def rates_at(ctx: Context, times: Times) -> Values:
+def rates_at(ctx: Context, times: Times, walls: Walls = NO_WALLS) -> Values:
     """The respiratory rate at each of `times` (in order), shape (n,), NaN where there is none.
 
-    Counted within 30 min, else the device's median.
+    Counted within 30 min with none of `walls` between, else the device's median.
     """
     counted = _finite(ctx.episode.number("rr").spots)
     out = np.full(times.shape, np.nan)
     if len(counted) and times.size:
-        out = _nearest_within(counted, times, int(ctx.policy.freshness.vitals_min.value * MINUTE))
+        out = _nearest_within(counted, times, int(ctx.policy.freshness.vitals_min.value * MINUTE), walls)
     machine = _machine_rate(ctx)
     if len(machine) and times.size:
         span = int(ctx.policy.trend.device_median_min.value * MINUTE)
@@ -221,11 +228,18 @@ def _machine_rate(ctx: Context) -> Series:
     return _finite(rr if len(rr) else ctx.episode.number("rr_total"))
 
 
-def _nearest_within(series: Series, times: Times, reach: Instant) -> Values:
+def _nearest_within(series: Series, times: Times, reach: Instant, walls: Walls) -> Values:
+    """The nearer of the neighbours on both sides that lie within reach in the same stretch between walls."""
     right = np.clip(np.searchsorted(series.t, times), 0, len(series) - 1)
     left = np.maximum(right - 1, 0)
-    nearer = np.where(np.abs(series.t[left] - times) <= np.abs(series.t[right] - times), left, right)
-    return np.where(np.abs(series.t[nearer] - times) <= reach, series.v[nearer], np.nan)
+    stretch, own = np.searchsorted(walls, series.t), np.searchsorted(walls, times)
+
+    def away(i: NDArray[np.int64]) -> Values:
+        apart = np.abs(series.t[i] - times).astype(np.float64)
+        return np.where((stretch[i] == own) & (apart <= reach), apart, np.inf)
+
+    nearer = np.where(away(left) <= away(right), left, right)
+    return np.where(np.isfinite(away(nearer)), series.v[nearer], np.nan)
 
 
 def channel_trend(ctx: Context, channel: str) -> RatioFigure:
@@ -273,7 +287,7 @@ def _vte_per_kg(ctx: Context) -> RatioFigure:
         reason = Message("trend.predicted_weight_not_known", {"height": height, "sex": sex})
         return slope_figure(ctx, NO_POINTS, {"latest": reason})
     series = _finite(ctx.episode.number("vte")).between(span_start(ctx), ctx.as_of)
-    series = series.cut(~in_any(series.t, (*ctx.support.breaks, *probable_breaks(ctx))))
+    series = series.cut(~in_any(series.t, (*ctx.support.off_times, *probable_breaks(ctx))))
     points = points_of(ctx, series)
     caveat = Message("caveat.tidal_volume_modelled_on_mask")
     return slope_figure(ctx, Points(points.t, points.v / pbw, points.newest_of), {}, caveat)

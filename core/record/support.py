@@ -59,6 +59,11 @@ class SupportTime:
         """The break a moment lies in."""
         return next((b for b in self.breaks if b.covers(at)), None)
 
+    @property
+    def off_times(self) -> tuple[Break, ...]:
+        """Every time without support after its start: the breaks, and what comes after the end."""
+        return self.breaks if self.end is None else (*self.breaks, Break(self.end, None))
+
     def drawn_in(self, at: Instant) -> Break | None:
         """The break a gas was drawn in. A gas belongs before what changed in its minute: one of the break's first
         minute was drawn before the mask came off, one of its last before the mask went on again."""

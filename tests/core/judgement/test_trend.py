@@ -7,7 +7,9 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from core.figures.episode_figures import judged
 from core.judgement.device_medians import medians
+from core.judgement.policy import shipped_policy
 from core.judgement.trend import channel_trend, rates_at, ratio_trends
 from core.record.instant import MINUTE
 from tests.support.log_cases import at, context
@@ -63,6 +65,23 @@ def test_sf_and_rox_by_hand_with_the_caveat() -> None:
 def test_saturation_in_a_break_is_not_used() -> None:
     log = SUPPORT + "02:00 spo2 94 rr 25\n03:00 break_start\n03:10 spo2 84 rr 30"
     assert ratio_trends(context(log, "03:20"))["sf"].at == at("02:00")
+
+
+def test_saturation_after_the_end_is_not_used() -> None:
+    log = SUPPORT + "02:00 spo2 92 rr 28\n03:00 stopped\n03:20 spo2 97 rr 20"
+    found = ratio_trends(context(log, "03:30"))
+    assert found["sf"].at == at("02:00")
+    assert found["rox"].latest == pytest.approx(92 / 0.5 / 28)
+
+
+def test_no_rate_from_before_a_change_goes_into_a_rox_after_it() -> None:
+    log = SUPPORT + "02:00 rr 40\n02:10 cpap 10\n02:20 spo2 94"
+    found = judged(context(log, "02:20").episode, at("02:20"), shipped_policy())
+    assert found.rox.latest is None
+    assert found.rox.reasons["latest"].key == "trend.rate_not_known"
+    later = judged(context(log + "\n02:45 rr 20", "02:50").episode, at("02:50"), shipped_policy())
+    assert later.rox.latest == pytest.approx(94 / 0.5 / 20)
+    assert later.rox.inputs["rr"].at == at("02:45")
 
 
 def test_a_quarter_of_an_hour_in_which_fio2_changed_has_no_ratio() -> None:
