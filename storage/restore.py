@@ -4,7 +4,10 @@ from __future__ import annotations
 
 import os
 import shutil
+from collections.abc import Iterator
+from contextlib import contextmanager
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from core.record.message import Message
 from storage import keys
@@ -14,6 +17,9 @@ from storage.errors import StoreError, os_failure, store_error, translated
 from storage.migrate.upgrade import migrate
 from storage.store_file import check_facts, data_key, is_encrypted, remove_store
 from storage.verify import findings
+
+if TYPE_CHECKING:
+    from storage.store import Store
 
 
 def restore(source: Path, new: Path, passphrase: str | None = None) -> Message | None:
@@ -56,6 +62,39 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
         remove_store(unfinished)
         if not new.exists():
             keys.envelope_path(new).unlink(missing_ok=True)
+
+
+@contextmanager
+def looked_into(source: Path, passphrase: str | None, beside: Path) -> Iterator[Store]:
+    """A backup opened for reading, of whatever released format. Of one of an older format a copy is brought up to
+    date and opened, which lies beside the store to be made, encrypted as the backup is, and goes again.
+
+    Raises:
+        StoreError: as `Store.open`; `store.exists` where such a copy of another look still lies there.
+    """
+    from storage.store import Store
+
+    try:
+        store = Store.open(source, passphrase=passphrase, read_only=True)
+    except StoreError as error:
+        if error.message.key != "store.older":
+            raise
+    else:
+        with store:
+            yield store
+        return
+    copy = beside.with_name(beside.name + ".looked-into")
+    check_free(copy)
+    key = data_key(source, passphrase)
+    try:
+        _copy(source, copy, key, closed=False)
+        if key is not None:
+            keys.write_envelope(keys.envelope_path(copy), keys.read_envelope(keys.envelope_path(source)))
+        migrate(copy, key, None)
+        with Store.open(copy, passphrase=passphrase, read_only=True) as store:
+            yield store
+    finally:
+        remove_store(copy)
 
 
 def _of_the_backup(error: StoreError, source: Path, unfinished: Path) -> StoreError:

@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
-from app.look.formats import with_unit
+from app.look.formats import as_typed
 from app.operations import backup as operations
 from app.words import sentence
 from core.record.instant import iso
@@ -19,8 +19,8 @@ if TYPE_CHECKING:
 def run(context: Context, args: argparse.Namespace) -> int:
     """Make the store named by --store (or the default one) of a backup; it must not exist yet."""
     passphrase = context.passphrase()
-    _prove(context, args.file, passphrase)
     context.store_path.parent.mkdir(parents=True, exist_ok=True)
+    _prove(context, args.file, passphrase)
     request = operations.RestoreRequest(args.file, context.store_path, passphrase, args.against, proven=True)
     made = operations.restore(None, context.by, context.now(), request).value
     lines = [f"Store {context.store_path} made from {args.file}. Check it: luffmark verify"]
@@ -36,10 +36,10 @@ def run(context: Context, args: argparse.Namespace) -> int:
 
 def _prove(context: Context, backup: Path, passphrase: str | None) -> None:
     """Where people sign in, who restores gives a PIN. A backup that stays closed cannot say who its people are."""
-    from storage.store import Store
+    from storage.restore import looked_into
 
     if not operations.is_encrypted_and_closed(backup, passphrase):
-        with Store.open(backup, passphrase=passphrase, read_only=True) as source:
+        with looked_into(backup, passphrase, context.store_path) as source:
             context.prove(source)
 
 
@@ -67,7 +67,7 @@ def newer_lines(made: operations.Restored) -> list[str]:
 def entry_line(entry: NewerEntry) -> str:
     """One entry as it was typed."""
     action = "" if entry.action == "assert" else f" ({entry.action})"
-    value = " ".join(part for part in (with_unit(entry.raw, entry.raw_unit), entry.note) if part)
+    value = " ".join(part for part in (as_typed(entry.raw, entry.raw_unit), entry.note) if part)
     return f"{iso(entry.at)} {entry.channel} {value}{action}, {entry.by}"
 
 

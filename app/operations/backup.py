@@ -26,12 +26,16 @@ LEAST_FREE, TIMES_STORE = 500_000_000, 4
 
 @dataclass(frozen=True, slots=True)
 class BackupFacts:
-    """A backup that was written: where, how large, the head it holds, and what is wrong with what it copied."""
+    """A backup that was written: where, how large, the head it holds, and what is wrong with what it copied.
+
+    `key_file` stands beside an encrypted one, which opens with it alone.
+    """
 
     path: Path
     size: int
     printed_head: str
     damage: tuple[Message, ...] = ()
+    key_file: Path | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,7 +103,16 @@ def write(store: Store, who: str, now: Instant, request: Path) -> Outcome[Backup
     head = store.printed_head()
     store.backup(request)
     wrong = check_if_quick(store, who, now, None).value
-    return Outcome(BackupFacts(request, request.stat().st_size, head, wrong), store.head())
+    beside = key_file_of(request)
+    return Outcome(BackupFacts(request, request.stat().st_size, head, wrong, beside), store.head())
+
+
+def key_file_of(backup: Path) -> Path | None:
+    """The key file beside an encrypted backup; None for a plain one."""
+    from storage.keys import envelope_path
+
+    beside = envelope_path(backup)
+    return beside if beside.exists() else None
 
 
 def rotate(store: Store, who: str, now: Instant, request: Rotation) -> Outcome[Rotated]:
@@ -159,10 +172,11 @@ def restore(store: object, who: str, now: Instant, request: RestoreRequest) -> O
         StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`, `key.*`.
         RecordError: `people.lead_needed`, `people.unknown`, `people.wrong_pin`.
     """
+    from storage.restore import looked_into
     from storage.store import Store
 
     if not is_encrypted_and_closed(request.backup, request.passphrase):
-        with Store.open(request.backup, passphrase=request.passphrase, read_only=True) as source:
+        with looked_into(request.backup, request.passphrase, request.new) as source:
             _require_right(source, who, request)
     unchecked = Store.restore(request.backup, request.new, passphrase=request.passphrase)
     if unchecked is not None:

@@ -12,6 +12,8 @@ from pathlib import Path
 
 import pytest
 
+from app.operations.backup import RestoreRequest, restore
+from core.record.message import RecordError
 from storage import schema
 from storage.backup_rotation import YEAR, backups_in, rotate
 from storage.keys import envelope_path
@@ -108,4 +110,33 @@ def test_a_backup_of_an_older_format_restores_and_stays_as_it_was(
     with Store.open(tmp_path / "new.luffmark", passphrase=SECRET) as store:
         assert store.notices == ()
         assert told(store) == said
+        assert store.verify() == ()
+
+
+@pytest.mark.parametrize("name", NAMES)
+def test_who_may_restore_a_backup_of_an_older_format_is_asked_of_a_copy(
+    name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """By the door of window and command line: its people are known, nobody else restores, nothing is left behind."""
+    path, said = unpacked(name, tmp_path)
+    before = path.read_bytes()
+    monkeypatch.setattr(schema, "FORMAT", schema.FORMAT + 1)
+    monkeypatch.setattr(upgrade.migrate, "__defaults__", (scripts_with_a_step(tmp_path / "scripts"),))
+    new = tmp_path / "made" / "new.luffmark"
+    new.parent.mkdir()
+    for who, pin, key in (("AB", "1111", "people.wrong_pin"), ("ZZ", "2580", "people.unknown")):
+        with pytest.raises(RecordError) as refused:
+            restore(None, who, NOW + YEAR, RestoreRequest(path, new, SECRET, pin=pin))
+        assert refused.value.message.key == key
+        assert list(new.parent.iterdir()) == []
+    found = restore(None, "AB", NOW + YEAR, RestoreRequest(path, new, SECRET, pin="2580")).value
+    assert found.unchecked is None
+    assert path.read_bytes() == before
+    assert {p.name.partition(".luffmark")[2] for p in new.parent.iterdir()} <= {"", ".key", "-wal", "-shm"}
+    with Store.open(new, passphrase=SECRET) as store:
+        assert store.notices == ()
+        kept = told(store)
+        assert kept["entries"] == said["entries"]
+        assert kept["samples"] == said["samples"]
+        assert [e["event"] for e in kept["events"]][-1] == "restored from a backup"
         assert store.verify() == ()
