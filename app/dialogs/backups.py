@@ -77,7 +77,7 @@ class BackupsDialog(AskingDialog):
         heads = [self.tr("Taken"), self.tr("File"), self.tr("Size")]
         self.table.setHorizontalHeaderLabels(heads)
         self.table.setAccessibleName(self.tr("Backups"))
-        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.table.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
         self.table.horizontalHeader().setSectionResizeMode(1, QHeaderView.ResizeMode.Stretch)
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
@@ -93,14 +93,21 @@ class BackupsDialog(AskingDialog):
             "for a year. Each is opened before an old one goes. They lie in {folder}. Choose a folder on another "
             "disk if there is one."
         )
-        self.told.setText(told.format(folder=folder))
         self.paths = backups_in(folder, self._store) if folder.is_dir() else {}
+        more = "" if self.paths else " " + self.tr("None lies there yet.")
+        if any(backups.key_file_of(path) for path in self.paths.values()):
+            more += " " + self.tr(
+                "An encrypted one opens only with its key file: copy both."
+            )
+        self.told.setText(told.format(folder=folder) + more)
         rows: list[tuple[Instant, Path]] = sorted(self.paths.items(), reverse=True)
         self._rows = [path for _, path in rows]
         self.table.setRowCount(len(rows))
         for r, (at, path) in enumerate(rows):
             size = f"{path.stat().st_size / 1e6:,.1f} MB"
-            for c, text in enumerate((wall(at, self._reader.zone), path.name, size)):
+            with_key = self.tr("{name} and its .key") if backups.key_file_of(path) else "{name}"
+            files = with_key.format(name=path.name)
+            for c, text in enumerate((wall(at, self._reader.zone), files, size)):
                 self.table.setItem(r, c, QTableWidgetItem(text))
         if rows:
             self.table.selectRow(0)
