@@ -20,7 +20,7 @@ from app.dialogs.asking import AskingDialog
 from app.forms.typed_time import typed_near
 from app.look.chooser import Chooser
 from app.look.copying import can_be_copied
-from app.look.formats import inert, quantity, wall
+from app.look.formats import inert, logged, wall
 from app.look.theme import Theme
 from app.operations import correction, intake
 from app.operations.outcome import Outcome
@@ -36,6 +36,7 @@ from core.record.episode import Episode
 from core.record.instant import Instant
 from core.record.local_time import local
 from core.record.message import Message, RecordError
+from core.record.units import written
 
 _ENTRY = Qt.ItemDataRole.UserRole
 _BY = 3
@@ -127,9 +128,8 @@ class CorrectDialog(AskingDialog):
             if CHANNELS[e.channel].kind is Kind.MARK:
                 shown = e.words or ""
             else:
-                shown = f"{e.raw} {e.raw_unit}".strip() or quantity(
-                    e.channel, e.number if e.number is not None else e.words
-                )
+                value = e.number if e.number is not None else e.words
+                shown = logged(e.channel, value, e.raw, e.raw_unit, self._reader.gas_unit)
             marks = [
                 word
                 for word, held in (
@@ -160,11 +160,8 @@ class CorrectDialog(AskingDialog):
     def _chosen(self) -> None:
         found = self._entry()
         if found is not None:
-            self.value.setText(
-                f"{found.raw} {found.raw_unit}".strip()
-                if CHANNELS[found.channel].kind is not Kind.MARK
-                else found.words or ""
-            )
+            is_mark = CHANNELS[found.channel].kind is Kind.MARK
+            self.value.setText(found.words or "" if is_mark else _editable(found))
             moment = local(found.at, self._reader.zone)
             self.time.setText(f"{moment:%H:%M}")
 
@@ -227,7 +224,7 @@ class CorrectDialog(AskingDialog):
 
     def _typed(self, found: Entry) -> tuple[str | None, str]:
         text = self.value.text().strip()
-        if text == f"{found.raw} {found.raw_unit}".strip():
+        if text == _editable(found):
             return None, ""
         if CHANNELS[found.channel].kind is Kind.NUMBER:
             value, _, unit = text.partition(" ")
@@ -267,3 +264,8 @@ class CorrectDialog(AskingDialog):
             return found is not None and self._right(found) == self._sent
         except RecordError:
             return False
+
+
+def _editable(entry: Entry) -> str:
+    """What was typed, to be typed anew: the number, a space, and its unit as people write it."""
+    return f"{entry.raw} {written(entry.raw_unit)}".strip()

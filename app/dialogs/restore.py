@@ -8,7 +8,7 @@ from PySide6.QtCore import QCoreApplication, QTimer
 from PySide6.QtWidgets import QCheckBox, QLineEdit, QWidget
 
 from app.dialogs.file_work import FileWork, free_name
-from app.look.formats import wall, with_unit
+from app.look.formats import as_typed, wall
 from app.look.theme import Theme
 from app.operations import backup as backups
 from app.operations.outcome import Outcome
@@ -140,7 +140,7 @@ def _newer_words(made: backups.Restored, reader: Reader) -> list[str]:
 
 
 def _entry_words(entry: NewerEntry, reader: Reader) -> str:
-    value = " ".join(part for part in (with_unit(entry.raw, entry.raw_unit), entry.note) if part)
+    value = " ".join(part for part in (as_typed(entry.raw, entry.raw_unit), entry.note) if part)
     kinds = {"correct": _tr("corrected"), "withdraw": _tr("withdrawn"), "move": _tr("moved here")}
     what = " ".join(part for part in (channel_name(entry.channel), value) if part)
     if entry.action in kinds:

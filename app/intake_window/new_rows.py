@@ -35,5 +35,4 @@ def _value(e: NewEntry) -> str:
         return e.words
     if e.number is not None and not e.raw:
         return formats.trimmed(e.number)
-    unit = "" if e.raw_unit in ("pH", "points", "fraction") else e.raw_unit
-    return formats.with_unit(e.raw if e.number is None else e.raw.replace(",", "."), unit)
+    return formats.as_typed(e.raw if e.number is None else e.raw.replace(",", "."), e.raw_unit)

@@ -81,7 +81,7 @@ class PreviewTable(QTableWidget):
         typed = reading.raw.replace(",", ".")
         if known.unit == "fraction":
             return formats.fraction(reading.number)
-        shown = formats.with_unit(typed, "" if reading.raw_unit in ("pH", "points") else reading.raw_unit)
+        shown = formats.as_typed(typed, reading.raw_unit)
         if reading.raw_unit == known.unit:
             return shown
         kept = formats.with_unit(formats.fixed(reading.number, known.decimals), formats.shown_unit(known.key))

@@ -15,7 +15,7 @@ from app.telling.language import in_language
 from core.record.channels import CHANNELS, Group, Kind
 from core.record.instant import MINUTE, Instant
 from core.record.local_time import candidates, local
-from core.record.units import MMHG_PER_KPA
+from core.record.units import MMHG_PER_KPA, written
 
 MINUS = "\N{MINUS SIGN}"
 NO_BREAK = "\N{NO-BREAK SPACE}"
@@ -184,6 +184,38 @@ def quantity(channel: str, value: float | str | None, gas_unit: str = "mmHg") ->
     keeps_zeros = known.group is Group.GAS or channel == "temp"
     text = fixed(value, known.decimals) if keeps_zeros else trimmed(value, known.decimals)
     return with_unit(text, shown_unit(channel))
+
+
+def as_typed(raw: str, raw_unit: str) -> str:
+    """What was typed, its unit as people write it: nothing else of it is touched.
+
+    >>> as_typed("37,4", "degC"), as_typed("8", "points"), as_typed("24", "/min"), as_typed("71", "mmHg")
+    ('37,4 °C', '8', '24/min', '71 mmHg')
+    """
+    return with_unit(raw, written(raw_unit)).strip()
+
+
+def logged(channel: str, value: float | str | None, raw: str, raw_unit: str, gas_unit: str = "mmHg") -> str:
+    """A logged value as it was typed; what it is kept as, in the reader's unit, beside it where that reads otherwise.
+
+    >>> logged("temp", 37.0, "98.6", "degF"), logged("paco2", 70.0, "9.33", "kPa"), logged("ph", 7.4, "7.40", "pH")
+    ('98.6 °F (37.0 °C)', '9.33 kPa (70 mmHg)', '7.40')
+    >>> logged("fio2", 0.35, "0.35", "fraction"), logged("dyspnoea", 8.0, "8", "points")
+    ('0.35 (35 %)', '8 (8 of 10)')
+    >>> logged("indication", "copd", "copd", ""), logged("rr", 24.0, "", "")
+    ('COPD', '24/min')
+    """
+    kept, known = quantity(channel, value, gas_unit), CHANNELS.get(channel)
+    if not raw or known is None or known.kind in (Kind.MARK, Kind.CHOICE):
+        return kept
+    typed = as_typed(raw, raw_unit)
+    if known.kind is not Kind.NUMBER:
+        return typed
+    in_gas_unit = channel in ("paco2", "pao2", "usual_paco2")
+    same = raw_unit == (gas_unit if in_gas_unit else known.unit) and known.unit != "fraction"
+    if (same and channel != "dyspnoea") or raw_unit == "%":
+        return typed
+    return f"{typed} (pH {kept})" if channel == "ph" else f"{typed} ({kept})"
 
 
 def choice_word(value: str) -> str:
