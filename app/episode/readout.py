@@ -40,6 +40,11 @@ class Readout(QFrame):
         column.addWidget(self._settings)
         column.addWidget(self._values)
         self.setAccessibleName(self.tr("Values at the crosshair"))
+        self._values.setToolTip(
+            self.tr(
+                "Single readings. Figures and levers take medians of what a device measured, and say of which span."
+            )
+        )
         self.set_theme(theme)
 
     def set_theme(self, theme: Theme) -> None:
@@ -81,7 +86,9 @@ class Readout(QFrame):
             f"<b>{escape(head)}</b> &nbsp; {escape(settings)} <span style='color:{quiet}'>{escape(age)}</span>"
         )
         parts = [self._value(r, at) for r in _once(readings)]
-        self._values.setText(" &nbsp;&nbsp; ".join(parts) or escape(self.tr("Nothing logged yet at this moment")))
+        lead = f"<span style='color:{quiet}'>{escape(self.tr('Readings:'))}</span>"
+        told = f"{lead}&nbsp; " + " &nbsp;&nbsp; ".join(parts)
+        self._values.setText(told if parts else escape(self.tr("Nothing logged yet at this moment")))
         self._values.setAccessibleName("\n".join((self.plain(), *events)))
 
     def plain(self) -> str:
