@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 
+from app.chart.picture_title import draw_picture_title
 from app.compare.course_chart import CourseChart, pen_of
 from app.compare.courses import Comparison
 from app.look.theme import Theme
@@ -25,17 +26,14 @@ class ComparisonPicture:
     def paint_on(self, painter: QPainter, width: int, height: int) -> None:
         """Paint at the painter's origin on a surface of this size."""
         px, theme = self.theme.px, self.theme
-        painter.setPen(QColor(theme.colours.ink))
-        painter.setFont(theme.font(theme.type.emphasis, bold=True))
-        left = px(16)
-        painter.drawText(QRectF(left, px(8), width, px(24)), Qt.AlignmentFlag.AlignLeft, self.title)
+        names_top, left = draw_picture_title(painter, theme, self.title, width), px(16)
         columns = 2 if width >= px(900) else 1
         names = list(self.comparison.names.items())
         per = -(-len(names) // columns)
         each = (width - 2 * left) / columns
         for n, (number, name) in enumerate(names):
-            self._name(painter, number, name, left + n // per * each, px(38) + n % per * px(_ROW), each)
-        top = px(38) + per * px(_ROW) + px(8)
+            self._name(painter, number, name, left + n // per * each, names_top + n % per * px(_ROW), each)
+        top = names_top + per * px(_ROW) + px(8)
         chart = CourseChart(theme)
         chart.show_comparison(self.comparison)
         painter.save()

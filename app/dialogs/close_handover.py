@@ -9,7 +9,7 @@ from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
 from app.dialogs.asking import AskingDialog
 from app.look.chooser import Chooser
 from app.look.theme import Theme
-from app.sheet.printing import PAPERS
+from app.sheet.paper import PAPERS
 
 
 class CloseHandoverDialog(AskingDialog):

@@ -11,7 +11,8 @@ from app.look.fitted import FittedDialog, fit
 from app.look.flow_row import FlowRow
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
-from app.sheet.printing import paint, set_paper
+from app.sheet.paper import set_paper
+from app.sheet.printing import paint
 from app.sheet.shapes import SheetContent
 from core.record.message import Message, RecordError
 
@@ -54,6 +55,7 @@ class HandoverPreview(FittedDialog):
         leave = self._button(self.tr("Leave"), self.tr("Leave without printing"), self.reject)
         self.before.setShortcut(Qt.Key.Key_PageUp)
         self.after.setShortcut(Qt.Key.Key_PageDown)
+        self.place.setMinimumHeight(self.wide.sizeHint().height())
         bar = FlowRow(spacing=px(8))
         for widget in (self.before, self.after, self.place, self.whole, self.wide):
             bar.addWidget(widget)
@@ -66,6 +68,7 @@ class HandoverPreview(FittedDialog):
         column.addWidget(self.view, 1)
         for sheet in self.view.findChildren(QGraphicsView):
             sheet.setAccessibleName(self.view.accessibleName())
+            sheet.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
             sheet.setBackgroundBrush(QColor(self._theme.colours.sunken))
             sheet.setStyleSheet(
                 f"QGraphicsView {{ border: 2px solid {self._theme.colours.line}; }}"

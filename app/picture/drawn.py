@@ -47,21 +47,13 @@ class Titled:
 
     def paint_on(self, painter: QPainter, width: int, height: int) -> None:
         """Paint at the painter's origin on a surface of this size."""
-        from PySide6.QtCore import QRectF, Qt
-        from PySide6.QtGui import QColor
-
-        from app.chart.marks import fitted
+        from app.chart.picture_title import draw_picture_title
         from app.chart.render import paint_chart
 
-        px, theme = self.theme.px, self.theme
-        painter.setPen(QColor(theme.colours.ink))
-        painter.setFont(theme.font(theme.type.emphasis, bold=True))
-        words = fitted(painter, self.title, width - px(32))
-        painter.drawText(QRectF(px(16), px(8), width - px(32), px(26)), Qt.AlignmentFlag.AlignLeft, words)
-        top = px(38)
+        top = draw_picture_title(painter, self.theme, self.title, width)
         painter.save()
         painter.translate(0, top)
-        paint_chart(self.spec, theme, painter, width, height - top, painter.worldTransform().m11())
+        paint_chart(self.spec, self.theme, painter, width, height - top, painter.worldTransform().m11())
         painter.restore()
 
 

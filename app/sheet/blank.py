@@ -6,13 +6,12 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Final
 
-from PySide6.QtCore import QBuffer, QIODevice
-from PySide6.QtGui import QGuiApplication, QPainter, QPdfWriter
+from PySide6.QtGui import QPainter, QPdfWriter
 
 from app.sheet.blocks import Block, Heading, RuledBox, Signatures, draw_all, height_of
 from app.sheet.gas_table import HEADINGS as GAS_HEADINGS
+from app.sheet.paper import DOTS_PER_INCH, pdf_of
 from app.sheet.press import LINE, SMALL, SUBTITLE, TITLE, Align, Press, Style
-from app.sheet.printing import DOTS_PER_INCH, set_paper
 from app.telling.caution_texts import CAUTION
 from app.telling.language import in_language as tr
 
@@ -111,26 +110,20 @@ def blank_bytes(paper: str = "A4", episodes: int = 1) -> tuple[bytes, int]:
     Raises:
         RecordError: `handover.paper` for a paper that is not known.
     """
-    if QGuiApplication.instance() is None:
-        raise RuntimeError("a QGuiApplication must exist before fonts can be used")
-    buffer = QBuffer()
-    buffer.open(QIODevice.OpenModeFlag.WriteOnly)
-    writer = QPdfWriter(buffer)
-    writer.setResolution(DOTS_PER_INCH)
-    writer.setTitle(tr("Handover, paper form"))
-    writer.setCreator("Luffmark")
-    set_paper(writer, paper)
+    return pdf_of(tr("Handover, paper form"), paper, lambda writer: _paint(writer, 1 + episodes))
+
+
+def _paint(writer: QPdfWriter, pages: int) -> int:
+    """The ward's page and one for each episode; how many."""
     size = writer.pageLayout().fullRectPoints()
     painter = QPainter(writer)
     press = Press(painter, DOTS_PER_INCH)
-    pages = 1 + episodes
     for number in range(1, pages + 1):
         if number > 1:
             writer.newPage()
         _draw_page(press, number, pages, float(size.width()), float(size.height()))
     painter.end()
-    buffer.close()
-    return bytes(buffer.data().data()), pages
+    return pages
 
 
 def _draw_page(press: Press, number: int, pages: int, width: float, height: float) -> None:

@@ -5,21 +5,19 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Final
 
-from PySide6.QtCore import QBuffer, QIODevice, QMarginsF
-from PySide6.QtGui import QColor, QGuiApplication, QPagedPaintDevice, QPageLayout, QPageSize, QPainter, QPdfWriter
+from PySide6.QtGui import QColor, QPagedPaintDevice, QPainter
 
 from app.keeping.whole_file import write_whole
 from app.operations.outcome import report
 from app.sheet.blocks import Signatures
 from app.sheet.pages import Fitted, Room, draw_episode, draw_overflow, fit_episode
+from app.sheet.paper import DOTS_PER_INCH, pdf_of
 from app.sheet.press import SMALL, SUBTITLE, TITLE, Align, Press, Style
 from app.sheet.shapes import EpisodePage, SheetContent
 from app.sheet.ward_sheet import draw_ward, split_ward
 from app.telling.language import in_language as tr
 from core.record.message import refuse
 
-PAPERS: Final = {"A4": QPageSize.PageSizeId.A4, "Letter": QPageSize.PageSizeId.Letter}
-DOTS_PER_INCH: Final = 1200
 _MARGIN: Final = 28.0
 _HEAD, _FOOT = 36.0, 27.0
 _SUBTITLE = 15.0
@@ -44,31 +42,8 @@ def pdf_bytes(content: SheetContent, paper: str = "A4") -> tuple[bytes, int]:
     Raises:
         RecordError: `handover.paper` for a paper that is not known.
     """
-    if QGuiApplication.instance() is None:
-        raise RuntimeError("a QGuiApplication must exist before fonts can be used")
-    buffer = QBuffer()
-    buffer.open(QIODevice.OpenModeFlag.WriteOnly)
-    writer = QPdfWriter(buffer)
-    writer.setResolution(DOTS_PER_INCH)
-    writer.setTitle(f"{content.ward.title}, {content.ward.shift}")
-    writer.setCreator("Luffmark")
-    set_paper(writer, paper)
-    pages = paint(content, writer, DOTS_PER_INCH)
-    buffer.close()
-    return bytes(buffer.data().data()), pages
-
-
-def set_paper(device: QPagedPaintDevice, paper: str) -> None:
-    """Upright paper with our own margins.
-
-    Raises:
-        RecordError: `handover.paper`.
-    """
-    if paper not in PAPERS:
-        raise refuse("handover.paper", paper=paper, accepted=" | ".join(PAPERS))
-    device.setPageSize(QPageSize(PAPERS[paper]))
-    device.setPageOrientation(QPageLayout.Orientation.Portrait)
-    device.setPageMargins(QMarginsF(0, 0, 0, 0), QPageLayout.Unit.Point)
+    title = f"{content.ward.title}, {content.ward.shift}"
+    return pdf_of(title, paper, lambda writer: paint(content, writer, DOTS_PER_INCH))
 
 
 def paint(content: SheetContent, device: QPagedPaintDevice, dots_per_inch: int) -> int:

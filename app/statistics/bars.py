@@ -10,6 +10,7 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
 from app.chart.marks import draw_card, fitted, pennant, solid_pen, verdict_sign
+from app.chart.picture_title import draw_picture_title
 from app.look.formats import minutes, span
 from app.look.theme import Theme, Tier, Verdict, verdict_of, verdict_word
 from app.statistics.measures import clock_name, flag_name, measures, ordered_flags
@@ -227,15 +228,13 @@ class StatisticsPicture:
     def paint_on(self, painter: QPainter, width: int, height: int) -> None:
         """Paint at the painter's origin on a surface of this size."""
         px, theme = self.theme.px, self.theme
-        painter.setPen(QColor(theme.colours.ink))
-        painter.setFont(theme.font(theme.type.emphasis, bold=True))
         told = translate("statistics", "Shift figures of the ward, {span}").format(
             span=span(self.found.start, self.found.end, self.reader.zone))  # fmt: skip
-        painter.drawText(QRectF(px(16), px(10), width, px(26)), _LEFT, told)
+        top = draw_picture_title(painter, theme, told, width)
         bars = StatisticsBars(theme)
         bars.show_figures(self.found, self.reader)
         painter.save()
-        painter.translate(px(16), px(46))
-        bars.paint_on(painter, width - px(32), height - px(46))
+        painter.translate(px(16), top)
+        bars.paint_on(painter, width - px(32), height - top)
         painter.restore()
         bars.deleteLater()

@@ -7,7 +7,6 @@ apostrophe away again.
 from __future__ import annotations
 
 import csv
-import os
 from collections.abc import Iterable, Iterator, Sequence
 from decimal import Decimal
 from math import isnan
@@ -22,7 +21,7 @@ from core.record.message import RecordError
 from core.record.reading import read_value
 from core.record.samples import DeviceSamples
 from storage.apostrophe import guarded
-from storage.errors import store_error
+from storage.export.whole_file import whole_file
 from storage.store import Store
 
 HEADER = ("episode", "at", "channel", "value", "unit", "by", "note", "recorded_at", "id", "zone")
@@ -38,22 +37,9 @@ def write_log_csv(
     Raises:
         StoreError: `store.exists`, `store.export_failed`.
     """
-    target = Path(path)
-    if target.exists():
-        raise store_error("store.exists", path=target.name)
-    unfinished = target.with_name(target.name + ".unfinished")
     top = store.head() if head is None else head
-    try:
-        with unfinished.open("w", encoding="utf-8", newline="") as file:
-            count = _write(store, file, store.episode_keys(top) if episodes is None else episodes, top)
-            file.flush()
-            os.fsync(file.fileno())
-        os.replace(unfinished, target)
-    except OSError as error:
-        raise store_error("store.export_failed", path=target.name, detail=error.strerror or "") from error
-    finally:
-        unfinished.unlink(missing_ok=True)
-    return count
+    with whole_file(Path(path), newline="") as file:  # the CSV writer ends its lines itself
+        return _write(store, file, store.episode_keys(top) if episodes is None else episodes, top)
 
 
 def _write(store: Store, file: TextIO, episodes: Iterable[str], head: int) -> int:

@@ -12,8 +12,8 @@ from storage.errors import store_error
 
 
 @contextmanager
-def whole_file(target: Path) -> Iterator[TextIO]:
-    """Write UTF-8 text into a new file; on any error nothing of it stays.
+def whole_file(target: Path, *, newline: str = "\n") -> Iterator[TextIO]:
+    """Write UTF-8 text into a new file; on any error nothing of it stays. `newline` as in `open`.
 
     Raises:
         StoreError: `store.exists`, `store.export_failed`.
@@ -22,7 +22,7 @@ def whole_file(target: Path) -> Iterator[TextIO]:
         raise store_error("store.exists", path=target.name)
     unfinished = target.with_name(target.name + ".unfinished")
     try:
-        with unfinished.open("w", encoding="utf-8", newline="\n") as file:
+        with unfinished.open("w", encoding="utf-8", newline=newline) as file:
             yield file
             file.flush()
             os.fsync(file.fileno())

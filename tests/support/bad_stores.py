@@ -13,18 +13,32 @@ from tests.support.flips import CHEAP, NOW, SECRET, filled, read_all
 from tests.support.mutations import Edit, changed
 
 
+class _Bad:
+    """A sound store, and the place where changed copies of it lie one after the other, in a folder of their own."""
+
+    def __init__(self, folder: Path, *, encrypted: bool) -> None:
+        self.source = filled(folder / "sound.luff", encrypted=encrypted)
+        self.secret = SECRET if encrypted else None
+        self.sound = self.source.read_bytes()
+        self.envelope = envelope_path(self.source).read_bytes() if encrypted else b""
+        self.path = folder / "bad" / "a.luff"
+        self.path.parent.mkdir()
+
+    def write(self, data: bytes, envelope: bytes | None = None) -> None:
+        """Lay a copy there, with its key file where it has one: the sound one unless another is given."""
+        self.path.write_bytes(data)
+        if self.envelope:
+            envelope_path(self.path).write_bytes(self.envelope if envelope is None else envelope)
+
+
 def opening(folder: Path, *, encrypted: bool, key_too: bool = False) -> Callable[[list[Edit]], str]:
     """Opens a changed store (or one whose key file is changed), reads and verifies it."""
-    sound = filled(folder / "sound.luff", encrypted=encrypted).read_bytes()
-    envelope = envelope_path(folder / "sound.luff").read_bytes() if encrypted else b""
-    path = folder / "bad" / "a.luff"
-    path.parent.mkdir()
+    bad = _Bad(folder, encrypted=encrypted)
+    path = bad.path
 
     def tried(made: list[Edit]) -> str:
-        data = sound if key_too else changed(sound, made)
-        path.write_bytes(data)
-        if encrypted:
-            envelope_path(path).write_bytes(changed(envelope, made) if key_too else envelope)
+        data = bad.sound if key_too else changed(bad.sound, made)
+        bad.write(data, changed(bad.envelope, made) if key_too else bad.envelope)
         try:
             with Store.open(path, passphrase=SECRET) as store:
                 sound_still = not store.verify()
@@ -42,19 +56,13 @@ def opening(folder: Path, *, encrypted: bool, key_too: bool = False) -> Callable
 
 def restoring(folder: Path, *, encrypted: bool) -> Callable[[list[Edit]], str]:
     """Restores a changed backup: the new store says what was recorded, or there is none."""
-    source = filled(folder / "sound.luff", encrypted=encrypted)
-    secret = SECRET if encrypted else None
-    with Store.open(source, passphrase=secret) as store:
+    bad = _Bad(folder, encrypted=encrypted)
+    path, secret = bad.path, bad.secret
+    with Store.open(bad.source, passphrase=secret) as store:
         truth = read_all(store)
-    sound = source.read_bytes()
-    envelope = envelope_path(source).read_bytes() if encrypted else b""
-    path = folder / "bad" / "a.luff"
-    path.parent.mkdir()
 
     def tried(made: list[Edit]) -> str:
-        path.write_bytes(changed(sound, made))
-        if encrypted:
-            envelope_path(path).write_bytes(envelope)
+        bad.write(changed(bad.sound, made))
         before = {p.name for p in path.parent.iterdir()}
         new = path.with_name("new.luff")
         try:
@@ -74,21 +82,15 @@ def restoring(folder: Path, *, encrypted: bool) -> Callable[[list[Edit]], str]:
 
 def salvaging(folder: Path, *, encrypted: bool) -> Callable[[list[Edit]], str]:
     """Salvages a changed store: what is not marked doubtful was recorded, and the new store is sound."""
-    source = filled(folder / "sound.luff", encrypted=encrypted)
-    secret = SECRET if encrypted else None
-    with Store.open(source, passphrase=secret) as store:
+    bad = _Bad(folder, encrypted=encrypted)
+    path, secret = bad.path, bad.secret
+    with Store.open(bad.source, passphrase=secret) as store:
         truth = {
             e.id: (e.episode, e.channel, e.number, e.note) for k in store.episode_keys() for e in store.entries(k)
         }
-    sound = source.read_bytes()
-    envelope = envelope_path(source).read_bytes() if encrypted else b""
-    path = folder / "bad" / "a.luff"
-    path.parent.mkdir()
 
     def tried(made: list[Edit]) -> str:
-        path.write_bytes(changed(sound, made))
-        if encrypted:
-            envelope_path(path).write_bytes(envelope)
+        bad.write(changed(bad.sound, made))
         before = {p.name: p.read_bytes() for p in path.parent.iterdir()}
         new = path.with_name("new.luff")
         try:

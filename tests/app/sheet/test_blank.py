@@ -7,7 +7,7 @@ from pypdf import PdfReader
 
 from app.sheet.blank import CARE, FACTS, blank_bytes
 from app.sheet.gas_table import HEADINGS
-from app.sheet.printing import PAPERS
+from app.sheet.paper import PAPERS
 from app.telling.caution_texts import CAUTION
 from core.record.message import RecordError
 

@@ -18,8 +18,9 @@ from app.operations import handover as operations
 from app.operations.outcome import CancelledError, watched
 from app.sheet.content import sheet_content
 from app.sheet.gas_table import GasRow
+from app.sheet.paper import PAPERS
 from app.sheet.press import LEAST_PRINT
-from app.sheet.printing import PAPERS, pdf_bytes, write_pdf
+from app.sheet.printing import pdf_bytes, write_pdf
 from app.sheet.shapes import ChangeLine, FlagLine, SheetContent
 from app.words import Reader
 from core.record.instant import HOUR, parse

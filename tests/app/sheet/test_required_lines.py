@@ -15,7 +15,8 @@ from app.operations import entry, episode, flag
 from app.operations import handover as operations
 from app.operations.figures import EpisodeRequest, of_episode
 from app.sheet.content import sheet_content
-from app.sheet.printing import PAPERS, pdf_bytes
+from app.sheet.paper import PAPERS
+from app.sheet.printing import pdf_bytes
 from app.words import Reader
 from core.record.instant import HOUR, MINUTE, parse
 from storage.store import Store
