@@ -25,12 +25,6 @@ from tests.support.open_window import NOW, ZONE, make_store, open_window, settle
 Key = Qt.Key
 
 
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "w.luffmark")) as made:
-        yield made
-
-
 def reading(qtbot, window):
     window.show_page("handover")
     until(qtbot, lambda: "Bed 7" in window.pages.handover.plain())

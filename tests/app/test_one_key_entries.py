@@ -3,15 +3,9 @@
 import pytest
 from PySide6.QtCore import Qt
 
-from tests.support.open_window import make_store, open_window, settled, until
+from tests.support.open_window import settled, until
 
 Key = Qt.Key
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 class Hand:

@@ -22,22 +22,15 @@ from core.figures.json_form import to_json
 from core.record.instant import MINUTE, parse
 from storage.store import Store
 from tests.support.open_window import open_window, settled, until
+from tests.support.sample_ward import sample_night
 
 Key, Mod = Qt.Key, Qt.KeyboardModifier
 THEN = parse("2026-03-28T02:40:00Z")
 
 
-@pytest.fixture(scope="module")
-def night(tmp_path_factory):
-    return demo.make_demo_store(tmp_path_factory.mktemp("night"))
-
-
 @pytest.fixture
-def window(qtbot, night, tmp_path):
-    with Store.open(night) as store:
-        store.backup(tmp_path / "copy")
-    Store.restore(tmp_path / "copy", tmp_path / "own.luffmark")
-    with open_window(qtbot, tmp_path / "own.luffmark") as made:
+def window(qtbot, tmp_path):
+    with open_window(qtbot, sample_night(tmp_path)) as made:
         yield made
 
 

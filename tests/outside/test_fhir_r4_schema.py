@@ -21,6 +21,7 @@ from core.record.knowledge import standing
 from storage.export.data_dictionary import code_system
 from storage.export.fhir import write_fhir
 from storage.store import Store
+from tests.support.sample_ward import sample_night
 
 validators = pytest.importorskip("jsonschema.validators")
 SCHEMA = json.loads((Path(__file__).parent / "fhir_r4_schema.json").read_text("utf-8"))
@@ -36,7 +37,7 @@ def wrong(resource: dict[str, Any], kind: str) -> list[str]:
 def written(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, Path, tuple[str, ...]]:
     """The sample shift's store, three of its episodes as FHIR, and their keys."""
     folder = tmp_path_factory.mktemp("fhir")
-    store, path = demo.make_demo_store(folder), folder / "out.json"
+    store, path = sample_night(folder), folder / "out.json"
     with Store.open(store) as opened:
         keys = opened.episode_keys()[:3]
         write_fhir(opened, path, episodes=keys)

@@ -11,13 +11,13 @@ from pathlib import Path
 
 import pytest
 
-from app import demo
 from core.record.channels import CHANNELS
 from core.record.knowledge import standing
 from storage.codes import LOCAL_SYSTEM
 from storage.export.data_dictionary import code_system
 from storage.export.fhir import write_fhir
 from storage.store import Store
+from tests.support.sample_ward import sample_night
 
 bundles = pytest.importorskip("fhir.resources.R4B.bundle")
 systems = pytest.importorskip("fhir.resources.R4B.codesystem")
@@ -25,7 +25,7 @@ systems = pytest.importorskip("fhir.resources.R4B.codesystem")
 
 def test_the_sample_shift_is_a_valid_bundle(tmp_path: Path) -> None:
     path = tmp_path / "out.json"
-    with Store.open(demo.make_demo_store(tmp_path)) as store:
+    with Store.open(sample_night(tmp_path)) as store:
         keys = store.episode_keys()[:3]
         count = write_fhir(store, path, episodes=keys)
         entries = {s.entry.id: s.entry for key in keys for s in standing(store.entries(key))}

@@ -4,9 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
-from functools import partial
+from functools import cache, partial
 from pathlib import Path
+from tempfile import TemporaryDirectory
+from typing import TypeVar
 
+from PySide6.QtWidgets import QDialog
 from pytestqt.qtbot import QtBot
 
 from app.keeping.preferences import Preferences
@@ -23,6 +26,7 @@ from app.window.main import MainWindow
 from core.record.instant import parse
 from storage.store import Store
 
+D = TypeVar("D", bound=QDialog)
 NOW = parse("2026-03-28T05:30:00+00:00")
 ZONE = "Europe/London"
 WAIT_MS = 60_000
@@ -44,7 +48,21 @@ BEDS = {
 
 
 def make_store(path: Path) -> Path:
-    """A store with both beds."""
+    """A store with both beds: logged once in a run, and copied."""
+    path.touch(mode=0o600, exist_ok=False)
+    path.write_bytes(_both_beds())
+    return path
+
+
+@cache
+def _both_beds() -> bytes:
+    with TemporaryDirectory() as folder:
+        path = _logged(Path(folder) / "ward.luffmark")
+        assert list(path.parent.iterdir()) == [path], "a store that is closed is one file"
+        return path.read_bytes()
+
+
+def _logged(path: Path) -> Path:
     with Store.create(path, now=NOW - 12 * 3_600_000_000, by="AB") as store:
         for key, (facts, lines) in BEDS.items():
             episode.begin(store, "AB", parse("2026-03-27T21:30:00+00:00"), BeginRequest(key, facts, zone=ZONE))
@@ -70,6 +88,11 @@ def open_window(
         yield window
     finally:
         window.close()
+
+
+def dialog_of(window: MainWindow, kind: type[D]) -> D:
+    """The dialog of a kind that is on show."""
+    return next(d for d in window.findChildren(kind) if d.isVisible())
 
 
 def settled(qtbot: QtBot, window: MainWindow) -> None:

@@ -4,14 +4,14 @@ from __future__ import annotations
 
 import json
 from pathlib import Path
-from typing import Any
 
 import pytest
 
-from app.cli import DONE, REFUSED, main
+from app.cli import DONE, REFUSED, WRONG_USAGE, main
 from core.judgement.policy import policy_hash, shipped_text
 from core.record.instant import parse
 from storage.store import Store
+from tests.support.command_line import Run, on_store
 
 WARD = (
     shipped_text()
@@ -27,20 +27,10 @@ ROWS = (
 
 
 @pytest.fixture
-def store(tmp_path: Path) -> Path:
-    return tmp_path / "ward.luffmark"
-
-
-@pytest.fixture
-def run(store: Path, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> Any:
+def run(store: Path, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> Run:
     log = tmp_path / "log.csv"
     log.write_text(ROWS, "utf-8")
-
-    def runner(*arguments: str | Path) -> tuple[int, str, str]:
-        code = main(["--store", str(store), "--by", "CD", "--zone", "UTC", *map(str, arguments)])
-        said = capsys.readouterr()
-        return code, said.out, said.err
-
+    runner = on_store(store, capsys, "--by", "CD", "--zone", "UTC")
     runner("intake", log)
     return runner
 
@@ -52,7 +42,7 @@ def ward_file(tmp_path: Path) -> Path:
     return path
 
 
-def test_a_new_store_has_its_own_copy(run: Any) -> None:
+def test_a_new_store_has_its_own_copy(run: Run) -> None:
     told = json.loads(run("policy", "show", "--json")[1])
     assert (told["shipped"], told["text"]) == (False, shipped_text())
     assert run("policy", "history")[1].count("Shipped policy, version 1  by CD") == 1
@@ -70,7 +60,7 @@ def test_a_store_of_files_has_its_copy_once_they_are_in(tmp_path: Path, store: P
         assert [k.text for k in opened.policies()] == [shipped_text()]
 
 
-def test_check_says_what_differs_and_put_puts_it_in_force(run: Any, ward_file: Path) -> None:
+def test_check_says_what_differs_and_put_puts_it_in_force(run: Run, ward_file: Path) -> None:
     code, out, _ = run("policy", "check", ward_file)
     assert code == DONE
     assert "markers.ph_below_severe.limits.ph: 7.2 (shipped 7.25)" in out
@@ -82,12 +72,12 @@ def test_check_says_what_differs_and_put_puts_it_in_force(run: Any, ward_file: P
     assert [line.split("  ")[2] for line in lines] == ["Ward 7, version 1", "Shipped policy, version 1"]
 
 
-def _flags(run: Any) -> str:
+def _flags(run: Run) -> str:
     told = json.loads(run("figures", "N4", "--as-of", "2026-03-27T21:00:00Z", "--json")[1])
     return "pH below 7.25" if "ph_below_severe" in [f["marker"] for f in told["episodes"][0]["flags"]] else ""
 
 
-def test_a_bad_file_changes_nothing_and_says_which_stays(run: Any, tmp_path: Path) -> None:
+def test_a_bad_file_changes_nothing_and_says_which_stays(run: Run, tmp_path: Path) -> None:
     bad = tmp_path / "bad.toml"
     text = WARD.replace("ph = 7.2 }", "ph = 72 }").replace('sure = "confirmed"', 'sure = "certain"', 1)
     bad.write_text(text, "utf-8")
@@ -98,7 +88,7 @@ def test_a_bad_file_changes_nothing_and_says_which_stays(run: Any, tmp_path: Pat
     assert len(run("policy", "history")[1].splitlines()) == 1
 
 
-def test_what_is_no_text_is_refused(run: Any, tmp_path: Path) -> None:
+def test_what_is_no_text_is_refused(run: Run, tmp_path: Path) -> None:
     bad = tmp_path / "bad.toml"
     for content in (b"\xff\xfe\x00", b"x" * 1_000_001):
         bad.write_bytes(content)
@@ -109,7 +99,7 @@ def test_what_is_no_text_is_refused(run: Any, tmp_path: Path) -> None:
     assert run("policy", "check", bad)[0] == DONE
 
 
-def test_one_that_cannot_be_read_is_said_and_the_last_good_one_judges(run: Any, store: Path, ward_file: Path) -> None:
+def test_one_that_cannot_be_read_is_said_and_the_last_good_one_judges(run: Run, store: Path, ward_file: Path) -> None:
     run("policy", "put", ward_file)
     with Store.open(store) as opened:
         opened.put_policy("x = 1", policy_hash("x = 1"), "EF", parse("2099-01-01T00:00:00Z"))
@@ -120,3 +110,17 @@ def test_one_that_cannot_be_read_is_said_and_the_last_good_one_judges(run: Any, 
     told = json.loads(run("policy", "show", "--json")[1])
     assert (told["name"], len(told["passed_over"])) == ("Ward 7", 1)
     assert "cannot be read" in run("policy", "history")[1].splitlines()[0]
+
+
+def test_policy_is_shown_checked_and_put_in_force(run: Run, tmp_path: Path) -> None:
+    _, shown, _ = run("policy", "show")
+    assert shown.strip() == shipped_text().strip()
+    good, bad = tmp_path / "ward.toml", tmp_path / "bad.toml"
+    good.write_text(shipped_text().replace('name = "Shipped policy"', 'name = "Ward 4"'), "utf-8")
+    bad.write_text(shipped_text().replace("window_from_min", "window_form_min"), "utf-8")
+    assert run("policy", "check", bad)[0] == REFUSED
+    assert "window_form_min" in run("policy", "check", bad)[2]
+    assert run("policy", "check", good)[0] == DONE
+    assert run("policy", "put", good)[0] == DONE
+    assert json.loads(run("policy", "show", "--json")[1])["name"] == "Ward 4"
+    assert run("policy", "check")[0] == WRONG_USAGE

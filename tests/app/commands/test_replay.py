@@ -13,15 +13,15 @@ from typing import Any
 
 import pytest
 
-from app import demo
 from app.cli import DONE, REFUSED, main
 from core.judgement.policy import shipped_text
+from tests.support.sample_ward import sample_night
 
 
 @pytest.fixture(scope="module")
 def night(tmp_path_factory: pytest.TempPathFactory) -> Path:
     """The sample night's store; nothing here writes to it."""
-    return demo.make_demo_store(tmp_path_factory.mktemp("night"))
+    return sample_night(tmp_path_factory.mktemp("night"))
 
 
 @pytest.fixture

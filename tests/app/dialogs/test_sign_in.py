@@ -65,3 +65,16 @@ def test_nothing_typed_is_refused_in_words(qtbot):
     qtbot.addWidget(dialog)
     dialog.submit()
     assert "Type your initials" in dialog.wrong.text()
+
+
+def test_signing_in_takes_initials(qtbot):
+    dialog = SignInDialog("AB", LIGHT)
+    qtbot.addWidget(dialog)
+    dialog.initials.clear()
+    dialog.go.click()
+    assert dialog.result() == 0
+    assert dialog.wrong.text()
+    qtbot.keyClicks(dialog.initials, "xy")
+    dialog.go.click()
+    assert dialog.person == "XY"
+    assert dialog.result() == 1

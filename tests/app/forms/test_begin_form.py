@@ -1,6 +1,5 @@
 """Beginning an episode: target from risk, ceiling apart from resuscitation, checklist, first gas, what ran before."""
 
-import pytest
 from PySide6.QtCore import Qt
 
 from app.forms.begin_form import BeginForm
@@ -8,15 +7,9 @@ from app.forms.readiness import ABSOLUTE, ITEMS, KINDS, of_kind
 from core.record.channels import CHANNELS, YES_NO
 from core.record.instant import parse
 from storage.store import Store
-from tests.support.open_window import NOW, make_store, open_window, settled, until
+from tests.support.open_window import NOW, settled, until
 
 Key = Qt.Key
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 def opened(qtbot, window):

@@ -11,7 +11,7 @@ from app.operations.intake import ReadRequest
 from storage.intake.kept_codes import kept_codes
 from storage.store import Store
 from tests.support.hl7_messages import gas, message
-from tests.support.open_window import NOW, make_store, open_window, settled, until
+from tests.support.open_window import NOW, settled, until
 from tests.support.spreadsheets import sheet_xml, write_xlsx
 
 HEAD = "episode,at,channel,value,unit,by,note\n"
@@ -19,12 +19,6 @@ GOOD = "bed-9,2026-03-28T02:00:00+00:00,rr,24,/min,AB,\n"
 BAD = "bed-9,2026-03-28T02:00:00+00:00,ipap,99,cmH2O,AB,\nbed-9,2026-03-28T02:00:00+00:00,hr,x,/min,AB,\n"
 LOCAL = ["OBX|2|NM|PCO2T^pCO2 at 37^L||8.1|kPa^^UCUM|||||F", "OBX|3|NM|K^potassium^L||4.4|mmol/L^^UCUM|||||F"]
 WHEN = {"at": "202603280425+0000", "sent": "202603280430+0000"}
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 def shown(qtbot, window, *paths):

@@ -13,18 +13,12 @@ from app.intake_window.mapping_dialog import MappingDialog
 from storage.intake.writing import Writing
 from storage.store import Store
 from tests.support.hl7_messages import gas, message
-from tests.support.open_window import make_store, open_window, settled, until
+from tests.support.open_window import settled, until
 
 GASES = (
     "Ward 4\n\nSampled;pH;pCO2;pO2 (kPa);Remark\n28.03.2026 01:10;7,31;8,1;7,9;calm\n"
     "28.03.2026 02:10;7,33;7,6;8,0;calm\n"
 )
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 def open_mapping(qtbot, window, path: Path) -> MappingDialog:

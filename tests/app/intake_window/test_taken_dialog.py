@@ -1,17 +1,9 @@
 """Files taken in: listed, and withdrawn by two presses."""
 
-import pytest
-
 from app.intake_window.taken_dialog import TakenDialog
-from tests.support.open_window import make_store, open_window, settled, until
+from tests.support.open_window import settled, until
 
 LOG = "episode,at,channel,value,unit,by,note\nbed-7,2026-03-28T02:00:00+00:00,rr,24,/min,AB,\n"
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 def test_a_file_is_listed_and_withdrawn_by_two_presses(qtbot, window, tmp_path):
@@ -44,7 +36,7 @@ def test_a_file_is_listed_and_withdrawn_by_two_presses(qtbot, window, tmp_path):
 def test_an_episode_that_a_withdrawal_empties_leaves_the_ward_and_may_begin_again(qtbot, window, tmp_path):
     path = tmp_path / "wrong.csv"
     rows = "".join(f"bed-9,2026-03-28T02:{m:02d}:00+00:00,vte,4{m:02d},mL,device,\n" for m in range(30))
-    path.write_text(LOG.split("\n")[0] + "\n" + rows)
+    path.write_text(LOG.split("\n", maxsplit=1)[0] + "\n" + rows)
     taking = window.doers.file.take_in(path)
     until(qtbot, lambda: taking.intake is not None)
     taking.go.click()

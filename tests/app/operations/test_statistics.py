@@ -12,13 +12,14 @@ from core.figures.ward_statistics import ward_statistics
 from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
 from storage.store import Store
+from tests.support.sample_ward import sample_night
 
 START = parse("2026-03-27T19:30:00Z")
 
 
 def test_a_span_is_what_its_episodes_are(tmp_path: Path) -> None:
     now = demo.demo_now()
-    with Store.open(demo.make_demo_store(tmp_path)) as store:
+    with Store.open(sample_night(tmp_path)) as store:
         records = [load(store, key) for key in store.episode_keys()]
         for start, end in ((START, now), (now - HOUR, now), (START - 24 * HOUR, START + HOUR)):
             found = statistics.of_ward(store, "", now, statistics.StatisticsRequest(start, end)).value
@@ -57,7 +58,7 @@ def test_a_span_that_runs_backwards_or_lies_ahead_is_refused(tmp_path: Path) -> 
 
 def test_what_is_known_at_a_moment_is_counted_up_to_it(tmp_path: Path) -> None:
     now, known = demo.demo_now(), START + 5 * HOUR
-    with Store.open(demo.make_demo_store(tmp_path)) as store:
+    with Store.open(sample_night(tmp_path)) as store:
         asked = statistics.of_ward(store, "", now, statistics.StatisticsRequest(START, now, known)).value
         then = statistics.of_ward(store, "", known, statistics.StatisticsRequest(START, known, known)).value
     assert asked == then

@@ -14,13 +14,14 @@ from app.sheet.shapes import SheetContent
 from app.words import Reader
 from core.record.instant import parse
 from storage.store import Store
+from tests.support.sample_ward import sample_night
 
 START = parse("2026-03-27T19:30:00Z")
 
 
 @pytest.fixture(scope="session")
 def night_store(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Store]:
-    with Store.open(demo.make_demo_store(tmp_path_factory.mktemp("night"))) as store:
+    with Store.open(sample_night(tmp_path_factory.mktemp("night"))) as store:
         yield store
 
 

@@ -6,15 +6,9 @@ import pytest
 from PySide6.QtCore import Qt
 
 from app.operations import entry
-from tests.support.open_window import make_store, open_window, settled, until
+from tests.support.open_window import settled, until
 
 Key = Qt.Key
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 @pytest.fixture

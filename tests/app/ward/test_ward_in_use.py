@@ -1,6 +1,5 @@
 """The ward as it changes through a night: equal beds, moves, the clock, what another process writes."""
 
-import pytest
 from PySide6.QtCore import Qt
 
 from app.chart.shapes import LaneKind
@@ -11,12 +10,6 @@ from app.session.clock import Clock
 from core.record.instant import MINUTE
 from storage.store import Store
 from tests.support.open_window import NOW, make_store, open_window, settled, until
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 def lane(window, key):

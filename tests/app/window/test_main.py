@@ -1,6 +1,5 @@
 """The window in real use: keys and mouse drive it, a real store answers, nothing is left behind."""
 
-import pytest
 from PySide6.QtCore import QPoint, Qt
 from PySide6.QtWidgets import QAbstractButton, QAbstractScrollArea, QApplication, QLabel, QWidget
 
@@ -9,12 +8,6 @@ from app.look.theme import DARK, LIGHT
 from tests.support.open_window import NOW, make_store, open_window, settled, until
 
 Key, Mod = Qt.Key, Qt.KeyboardModifier
-
-
-@pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        yield made
 
 
 def lane(window, key="bed-7"):

@@ -15,13 +15,14 @@ from app.words import Reader, sentence
 from core.record.instant import HOUR
 from core.record.message import Message
 from storage.store import Store
+from tests.support.sample_ward import sample_night
 
 ZONE = demo.ZONE
 
 
 @pytest.fixture(scope="module")
 def wards(tmp_path_factory: pytest.TempPathFactory) -> list[operations.WardAnswer]:
-    path: Path = demo.make_demo_store(tmp_path_factory.mktemp("night"))
+    path: Path = sample_night(tmp_path_factory.mktemp("night"))
     now = demo.demo_now()
     with Store.open(path) as store:
         moments = [now - n * HOUR for n in range(0, 11, 2)]

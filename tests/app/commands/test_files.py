@@ -5,30 +5,19 @@ from __future__ import annotations
 import json
 import re
 from pathlib import Path
-from typing import Any
 
 import pytest
 
-from app.cli import DONE, REFUSED, WRONG_USAGE, main
+from app.cli import DONE, REFUSED, WRONG_USAGE
+from tests.support.command_line import Run, on_store
 from tests.support.hl7_messages import gas, message, obx
 
 GASES = "Sampled;pH;pCO2;pO2 (kPa)\n28.03.2026 01:10;7,31;8,1;7,9\n28.03.2026 02:10;7,33;7,6;8,0\n"
 
 
 @pytest.fixture
-def run(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> Any:
-    """Runs a command on a store of its own; gives exit code, stdout and stderr."""
-
-    def runner(*arguments: str | Path) -> tuple[int, str, str]:
-        capsys.readouterr()
-        try:
-            code = main(["--store", str(tmp_path / "w.luffmark"), "--zone", "Europe/Oslo", *map(str, arguments)])
-        except SystemExit as ended:
-            code = int(ended.code or 0)
-        said = capsys.readouterr()
-        return code, said.out, said.err
-
-    return runner
+def run(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> Run:
+    return on_store(tmp_path / "w.luffmark", capsys, "--zone", "Europe/Oslo")
 
 
 @pytest.fixture
@@ -38,7 +27,7 @@ def gases(tmp_path: Path) -> Path:
     return path
 
 
-def test_from_a_proposal_to_the_record(run: Any, gases: Path, tmp_path: Path) -> None:
+def test_from_a_proposal_to_the_record(run: Run, gases: Path, tmp_path: Path) -> None:
     code, out, _ = run("mapping", "propose", gases, "--name", "analyser")
     assert code == DONE
     proposal = json.loads(out)
@@ -64,7 +53,7 @@ def test_from_a_proposal_to_the_record(run: Any, gases: Path, tmp_path: Path) ->
     assert run("intake", gases, "--mapping", "analyser")[0] == REFUSED
 
 
-def test_refused_rows_are_left_out_only_on_demand(run: Any, tmp_path: Path) -> None:
+def test_refused_rows_are_left_out_only_on_demand(run: Run, tmp_path: Path) -> None:
     path = tmp_path / "a.hl7"
     path.write_text(message([*gas(), obx("lactate", ">^9", kind="SN")]))
     code, _, err = run("intake", path, "--episode", "E1")
@@ -75,7 +64,7 @@ def test_refused_rows_are_left_out_only_on_demand(run: Any, tmp_path: Path) -> N
     assert (code, taken["entries"], len(taken["left_out"])) == (DONE, 5, 1)
 
 
-def test_patients_are_named_by_identifier(run: Any, tmp_path: Path) -> None:
+def test_patients_are_named_by_identifier(run: Run, tmp_path: Path) -> None:
     path = tmp_path / "a.hl7"
     path.write_text(message(gas()) + message(gas(), patient="0043^^^WARD-7^MR", order="F2"))
     assert run("intake", path, "--episode", "E1")[0] == REFUSED
@@ -84,7 +73,7 @@ def test_patients_are_named_by_identifier(run: Any, tmp_path: Path) -> None:
     assert run("intake", path, "--patient", "no pair")[0] == WRONG_USAGE
 
 
-def test_a_file_is_listed_withdrawn_and_may_come_again(run: Any, tmp_path: Path) -> None:
+def test_a_file_is_listed_withdrawn_and_may_come_again(run: Run, tmp_path: Path) -> None:
     path = tmp_path / "a.hl7"
     path.write_text(message(gas()))
     run("intake", path, "--episode", "E1")
@@ -103,7 +92,7 @@ def test_a_file_is_listed_withdrawn_and_may_come_again(run: Any, tmp_path: Path)
     assert run("verify")[0] == DONE
 
 
-def test_a_refusal_says_what_to_type_next(run: Any, tmp_path: Path) -> None:
+def test_a_refusal_says_what_to_type_next(run: Run, tmp_path: Path) -> None:
     path = tmp_path / "a.hl7"
     path.write_text(message(gas()))
     code, _, err = run("intake", path)
@@ -116,7 +105,7 @@ def test_a_refusal_says_what_to_type_next(run: Any, tmp_path: Path) -> None:
     assert "mapping propose" in err
 
 
-def test_a_device_trend_with_its_answers(run: Any, tmp_path: Path) -> None:
+def test_a_device_trend_with_its_answers(run: Run, tmp_path: Path) -> None:
     path = tmp_path / "trend.csv"
     rows = [f"2026-03-28 01:{m:02d},{20 + m},4{m:02d}" for m in range(50)]
     path.write_text("\n".join(["Time,Leak (L/min),Tidal volume (mL)", *rows]))
@@ -131,7 +120,7 @@ def test_a_device_trend_with_its_answers(run: Any, tmp_path: Path) -> None:
     assert (facts["clock_shift_s"], facts["leak_definition"], facts["mapping"]) == (-60.0, "total", "trend")
 
 
-def test_fhir_goes_out_and_comes_in(run: Any, tmp_path: Path, gases: Path) -> None:
+def test_fhir_goes_out_and_comes_in(run: Run, tmp_path: Path, gases: Path) -> None:
     path = tmp_path / "a.hl7"
     path.write_text(message(gas(ph="7.40")))
     run("intake", path, "--episode", "E1")

@@ -1,0 +1,93 @@
+"""Taking a log file in by the command line: what is told, and what is refused by its line."""
+
+import json
+import re
+from pathlib import Path
+
+import pytest
+
+from app.cli import DONE, REFUSED
+from tests.support.command_line import HEADER, ROWS, Run
+
+
+def test_intake_tells_what_it_took_and_skips_what_is_there(run: Run, log_file: Path) -> None:
+    code, out, err = run("intake", log_file)
+    assert (code, "New store" in err) == (DONE, True)
+    assert "14 entries" in out
+    code, out, _ = run("intake", log_file, "--json")
+    assert code == DONE
+    taken = json.loads(out)["taken"][0]
+    assert (taken["entries"], taken["repeated"]) == (0, 14)
+
+
+BAD_ROWS = {
+    "unknown channel": "N4,2026-03-27T22:00:00+00:00,ipapp,16,cmH2O,AB,\n",
+    "unit that does not fit": "N4,2026-03-27T22:00:00+00:00,ipap,16,mmol/L,AB,\n",
+    "past a hard limit": "N4,2026-03-27T22:00:00+00:00,ipap,160,cmH2O,AB,\n",
+    "IPAP not above EPAP": "N4,2026-03-27T22:00:00+00:00,ipap,4,cmH2O,AB,\n",
+    "no offset": "N4,2026-03-27T22:00:00,ipap,18,cmH2O,AB,\n",
+    "in the future": "N4,2099-03-27T22:00:00+00:00,ipap,18,cmH2O,AB,\n",
+    "no number": "N4,2026-03-27T22:00:00+00:00,ipap,high,cmH2O,AB,\n",
+    "repeated": ROWS.splitlines(keepends=True)[3],
+}
+
+
+@pytest.mark.parametrize("what", BAD_ROWS)
+def test_a_bad_row_is_refused_by_its_line_and_the_store_is_untouched(
+    run: Run, filled: Run, tmp_path: Path, what: str
+) -> None:
+    _, before, _ = run("verify")
+    bad = tmp_path / "bad.csv"
+    bad.write_text(HEADER + ROWS + BAD_ROWS[what], "utf-8")
+    code, out, err = run("intake", bad)
+    assert code == REFUSED
+    assert out == ""
+    first, *rows = err.strip().splitlines()
+    assert first.startswith("luffmark: ")
+    assert "untouched" in first
+    assert any(f"line {len((HEADER + ROWS).splitlines()) + 1}" in row for row in rows), err
+    assert all("Accepted" in row or "already" in row or "later row counts" in row for row in rows), err
+    assert run("verify")[1] == before
+
+
+@pytest.mark.parametrize("content", [b"", b"\x00\x01\x02", b"a,b,c\n1,2,3\n", b"\xff\xfe\x00"])
+def test_what_is_no_log_file_is_refused(run: Run, filled: Run, tmp_path: Path, content: bytes) -> None:
+    bad = tmp_path / "bad.csv"
+    bad.write_bytes(content)
+    code, _, err = run("intake", bad)
+    assert code == REFUSED
+    assert "line 1" in err or "No mapping" in err
+    assert "Traceback" not in err
+
+
+def test_a_missing_file_makes_no_store(run: Run, store: Path, tmp_path: Path) -> None:
+    code, _, err = run("intake", tmp_path / "gone.csv")
+    assert code == REFUSED
+    assert "is not there" in err
+    assert not store.exists()
+
+
+def test_files_without_header_or_rows_say_so(filled: Run, tmp_path: Path) -> None:
+    bare, only = tmp_path / "bare.csv", tmp_path / "only.csv"
+    bare.write_text(ROWS.splitlines()[0] + "\n", "utf-8")
+    only.write_text(HEADER, "utf-8")
+    code, _, err = filled("intake", bare)
+    assert (code, "episode,at,channel,value" in err) == (REFUSED, True)
+    code, out, err = filled("intake", only)
+    assert (code, out, "has no rows" in err) == (REFUSED, "", True)
+
+
+def test_words_are_offered_only_where_they_are_near(filled: Run, tmp_path: Path) -> None:
+    bad = tmp_path / "bad.csv"
+    bad.write_text(HEADER + "N4,2026-03-27T22:00:00+00:00,banana,1,,AB,\nN4,2026-03-27T22:00:00+00:00,ipapp,1,,AB,\n",
+                   "utf-8")  # fmt: skip
+    err = filled("intake", bad)[2]
+    assert "apnoea" not in err
+    assert "'ipapp' is no channel. Accepted: ipap" in err
+
+
+def test_a_unit_stands_once_and_times_to_the_second(filled: Run, tmp_path: Path) -> None:
+    assert "pH 9.9 is not possible" in filled("log", "N4", "ph 9.9")[2]
+    bad = tmp_path / "bad.csv"
+    bad.write_text(HEADER + "N4,2098-03-27T22:00:00+00:00,rr,20,,AB,\n", "utf-8")
+    assert not re.search(r":\d\d\.\d", filled("intake", bad)[2])

@@ -1,0 +1,45 @@
+"""Logging one line by the command line, as it is typed in the window."""
+
+import pytest
+
+from app.cli import DONE, REFUSED
+from tests.support.command_line import Run
+
+
+def test_log_says_what_it_recorded_with_units_and_support(filled: Run) -> None:
+    code, out, _ = filled("log", "N4", "18/5 30", "--by", "CD")
+    assert code == DONE
+    assert "IPAP 18 cmH2O, EPAP 5 cmH2O, FiO2 30 %" in out
+    assert "Pressure support 13 cmH2O (was 11)" in out
+
+
+def test_log_asks_before_an_unusual_value(filled: Run) -> None:
+    code, _, err = filled("log", "N4", "rr 55")
+    assert code == REFUSED
+    assert "55/min" in err
+    assert "--yes" in err
+    assert filled("log", "N4", "rr 55", "--yes")[0] == DONE
+
+
+def test_a_line_may_be_dated_to_any_day_before(filled: Run) -> None:
+    code, out, _ = filled("log", "N4", "rr 24", "--at", "2026-03-27T21:40Z")
+    assert code == DONE
+    assert "27-Mar-2026 21:40" in out
+    code, _, err = filled("log", "N4", "21:30 rr 25", "--at", "2026-03-27T21:40Z")
+    assert code == REFUSED
+    assert "a time of its own" in err
+
+
+@pytest.mark.parametrize("line", ["", "rr", "16", "quux 5", "ipap 4 epap 8", "ph 9"])
+def test_log_refuses_in_one_line(filled: Run, line: str) -> None:
+    code, out, err = filled("log", "N4", line)
+    assert (code, out) == (REFUSED, "")
+    assert len(err.strip().splitlines()) == 1
+    assert err.startswith("luffmark: ")
+
+
+def test_the_login_name_is_said_once_where_nobody_is_named(filled: Run) -> None:
+    _, _, err = filled("log", "N4", "rr 20")
+    assert err.count("(login name)") == 1
+    assert "login name" not in filled("log", "N4", "rr 21", "--by", "AB", "--yes")[2]
+    assert "login name" not in filled("figures", "N4")[2]
