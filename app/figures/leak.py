@@ -95,8 +95,11 @@ def _over(leak: LeakFigure, make: RowMaker) -> FigureRow:
     minutes = leak.minutes_over_limit
     value = "" if minutes is None else formats.minutes(minutes)
     why = "" if value else make.say(leak.reasons.get("minutes_over_limit")) or make.tr("Not known")
-    name = make.tr("Time over the leak limit")
-    return FigureRow("leak_minutes_over", name, value, why=why, inputs=_of_limit(leak, make))
+    name, counted = make.tr("Time over the leak limit"), ()
+    if value and leak.counted is not None:
+        first, last = (make.reader.time(at) for at in leak.counted)
+        counted = (make.tr("Counted from {first} to {last} only").format(first=first, last=last),)
+    return FigureRow("leak_minutes_over", name, value, notes=counted, why=why, inputs=_of_limit(leak, make))
 
 
 def _adjustment(leak: LeakFigure, at: Instant, make: RowMaker) -> FigureRow:

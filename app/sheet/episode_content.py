@@ -94,7 +94,7 @@ class EpisodeWriter(SheetWriter):
         f = s.now
         yield tr("Support"), self._lines.on_mask(f.support)
         yield tr("Settings now"), self._support_now(f)
-        yield tr("Leak, interface"), self._lines.leak(f.leak) + self._interface(f)
+        yield tr("Leak, interface"), self._lines.leak(s.leak) + self._interface(f)
         if (at := quiet_since(s)) is not None:
             yield tr("Record"), tr("nothing logged since {moment}").format(moment=self._moment(at))
 

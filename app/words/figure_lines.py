@@ -366,7 +366,11 @@ class FigureLines:
         meant = self.tr(leak.definition) if leak.definition else self.tr("what the device calls leak is not known")
         text = f"{self.tr('Leak')} {formats.fixed(leak.median_L_per_min, 0)} L/min ({taken}; {meant})"
         if leak.minutes_over_limit is not None and leak.limit_L_per_min is not None:
-            over = self.tr("in that time {length} over {limit} L/min")
+            follows = (
+                leak.definition == "total"
+            )  # its limit goes with the pressure: the one of now is not that of then
+            over = self.tr("in that time {length} over its limit, now {limit} L/min" if follows
+                           else "in that time {length} over {limit} L/min")  # fmt: skip
             length, limit = formats.minutes(leak.minutes_over_limit), formats.fixed(leak.limit_L_per_min, 0)
             text += f"; {over.format(length=length, limit=limit)}"
         return text

@@ -25,6 +25,7 @@ _INSTANTS = frozenset(
      "due_from", "due_until", "done_at", "observed_at", "latest_at", "over_since", "adjusted_at",
      "off_mask_since", "last_logged_at", "headline_at", "pf_at"}
 )  # fmt: skip
+_SPANS = frozenset({"t", "at", "probable_breaks", "median_of", "latest_median_of", "counted"})
 _MICROSECONDS = 10**14
 """No count and no sequence is this large; an instant since 1973 is."""
 _INTERNAL = frozenset({"reasons", "concern", "ids"})
@@ -139,7 +140,7 @@ class _Form:
         if isinstance(value, Mapping):
             return {str(k): self.value(str(k), v) for k, v in value.items()}
         if isinstance(value, tuple):
-            inner = "at" if name in ("t", "at", "probable_breaks", "median_of", "latest_median_of") else ""
+            inner = "at" if name in _SPANS else ""
             return [self.value(inner, v) for v in value]
         return tidy(value) if isinstance(value, float) else value
 

@@ -11,9 +11,10 @@ from dataclasses import dataclass, field
 from typing import Final
 
 from core.figures.episode_figures import episode_figures, gas_stage, record_stage
+from core.judgement.leak_trend import leak_figure
 from core.judgement.policy import Policy
 from core.judgement.setting_change import changed
-from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, ResponseFigure, Step
+from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, LeakFigure, ResponseFigure, Step
 from core.record.channels import CHANNELS, Group
 from core.record.episode import Episode, Words
 from core.record.instant import HOUR, Instant
@@ -63,6 +64,8 @@ class ShiftFigures:
     due: tuple[DueFigure, ...] = ()
     breaks: tuple[Break, ...] = ()
     hours_on_mask: float = 0.0
+    leak: LeakFigure = LeakFigure()
+    """The leak of the shift itself; that of `now` is of the trend's span, which is another."""
     events: tuple[Event, ...] = ()
     told: tuple[Event, ...] = ()
     recorded_late: int = 0
@@ -137,6 +140,7 @@ def episode_shift(episode: Episode, start: Instant, end: Instant, policy: Policy
         due=due_ahead(now, end),
         breaks=tuple(b for b in support.breaks if b.start <= end and (b.end is None or b.end > start)),
         hours_on_mask=support.hours_on_mask(start, end),
+        leak=leak_figure(ctx, since=start + 1),
         events=_events(cut, start, end), told=_events_of(cut, _TOLD, start, end),
         recorded_late=_recorded_late(cut, start, end),
         began=support.start is not None and _inside(support.start, start, end),

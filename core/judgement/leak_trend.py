@@ -51,23 +51,27 @@ def _meanings(ctx: Context) -> list[_Meaning]:
     return found or [_Meaning(0, None)]
 
 
-def leak_figure(ctx: Context) -> LeakFigure:
+def leak_figure(ctx: Context, since: Instant | None = None) -> LeakFigure:
     """The leak of an episode over the trend's span. Nulls carry their reason.
 
-    Where the meaning of leak changed (another device), only what came after counts: two meanings make no trend.
+    `since`: median and time over the limit count from there instead, e.g. from a shift's start; the slope stays that
+    of the trend. Where the meaning of leak changed (another device), only what came after counts: two meanings make
+    no trend.
     """
     series = ctx.episode.number("leak")
     if not len(series):
         return LeakFigure(reasons={"median_L_per_min": Message("leak.no_values")})
     meaning, suspected = _meanings(ctx)[-1], probable_breaks(ctx)
-    start = max(span_start(ctx), meaning.start)
+    wanted = span_start(ctx) if since is None else since
+    start = max(wanted, meaning.start)
     near = series.between(start, ctx.as_of)
     worn = near.cut(~in_any(near.t, (*ctx.support.off_times, *suspected)) & np.isfinite(near.v))
     figure = _level(worn, slope_figure(ctx, points_of(ctx, worn), {}), meaning.definition)
     figure = _with_newest(figure, worn, int(ctx.policy.trend.device_median_min.value * MINUTE))
-    figure = replace(figure, probable_breaks=tuple((b.start, b.end) for b in suspected))
+    counted = (int(worn.t[0]), ctx.as_of) if len(worn) else None
+    figure = replace(figure, probable_breaks=tuple((b.start, b.end) for b in suspected), counted=counted)
     figure = _with_adjustment(figure, ctx, series)
-    if meaning.start > span_start(ctx):
+    if meaning.start > wanted:
         changed = Message("leak.meaning_changed", {"at": meaning.start})
         figure = replace(figure, reasons={**figure.reasons, "span": changed})
     if meaning.definition is None:

@@ -251,6 +251,8 @@ class LeakFigure:
     """The first and the last value whose median `median_L_per_min` is; None for a single value."""
     latest_median_of: tuple[Instant, Instant] | None = None
     """The first and the last sample of the newest median; None for a single value."""
+    counted: tuple[Instant, Instant] | None = None
+    """From when until when the time over the limit was counted: never told without it."""
 
 
 @dataclass(frozen=True, slots=True)

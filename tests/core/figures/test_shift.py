@@ -11,6 +11,7 @@ from core.judgement.policy import shipped_policy
 from core.record.episode import build_episode
 from core.record.instant import HOUR, MINUTE
 from core.record.knowledge import standing
+from tests.support import log_cases as cases
 from tests.support.log import entries, episode, moment
 
 POLICY = shipped_policy()
@@ -124,3 +125,16 @@ def test_what_was_typed_late_is_counted_and_what_a_file_brought_is_not() -> None
     assert late_by("01:00 rr 24 hr 100", "03:00") == 2
     assert late_by("02:30 rr 24", "03:00") == 0
     assert late_by("01:00 rr 24\n01:30 rr 26\n02:00 rr 28", "05:00") == 0
+
+
+def test_leak_over_its_limit_is_that_of_the_whole_shift() -> None:
+    """Nine hours later the trend's span has left it behind; the shift has not."""
+    log = """19:00 mode BPAP-ST ipap 14 epap 5 leak_definition unintentional
+        device leak 19:00 20:00 45 45
+        device leak 20:00 23:59 20 20
+        d1 01:00 rr 20"""
+    begin, end = cases.at("19:30"), cases.at("d1 05:00")
+    found = episode_shift(cases.episode(log), begin, end, POLICY)
+    assert found.now.leak.minutes_over_limit == 0
+    assert found.leak.minutes_over_limit == 29, "19:31 to 20:00: the minute of the start is the shift's before"
+    assert found.leak.counted == (begin + MINUTE, end)

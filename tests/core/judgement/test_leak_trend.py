@@ -33,6 +33,18 @@ def test_unintentional_leak_over_its_limit() -> None:
     assert leak.latest_L_per_min == 45
 
 
+def test_the_time_over_the_limit_names_its_span_and_counts_from_where_it_is_told_to() -> None:
+    log = f"{BEGIN} leak_definition unintentional\ndevice leak 01:00 02:00 45 45\ndevice leak 02:00 10:00 20 20"
+    ctx = context(log, "10:00")
+    newest, whole = leak_figure(ctx), leak_figure(ctx, since=at("01:00"))
+    assert newest.minutes_over_limit == 0
+    assert newest.counted == (at("04:00"), at("10:00")), "the trend's span alone"
+    assert (whole.minutes_over_limit, whole.counted) == (60, (at("01:00"), at("10:00")))
+    assert whole.median_of is not None
+    assert whole.median_of[0] == at("01:00")
+    assert whole.slope_L_per_min_per_h == newest.slope_L_per_min_per_h
+
+
 def test_a_total_leaks_limit_adds_the_port_at_the_time_weighted_pressure() -> None:
     log = f"{BEGIN} leak_definition total\n01:30 rr 20\ndevice leak 01:00 01:40 50 50"
     leak = leak_figure(context(log, "01:40"))
