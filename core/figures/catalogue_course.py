@@ -87,8 +87,8 @@ LEAK: Final = (
         _LEAK + "test_a_total_leaks_limit_adds_the_port_at_the_time_weighted_pressure", _DEFINED,
     ),
     _line(
-        "leak_minutes_over", "Minutes over the leak limit", "min", "time of the samples above the limit, in the span beside it",
-        "definition", "common practice",
+        "leak_minutes_over", "Minutes over the leak limit", "min",
+        "time of the samples above the limit, in the span beside it", "definition", "common practice",
         _LEAK_AT + "leak_figure", _LEAK + "test_unintentional_leak_over_its_limit", _DEFINED,
     ),
     _line(

@@ -64,7 +64,7 @@ class ShiftFigures:
     due: tuple[DueFigure, ...] = ()
     breaks: tuple[Break, ...] = ()
     hours_on_mask: float = 0.0
-    leak: LeakFigure = LeakFigure()
+    leak: LeakFigure = field(default_factory=LeakFigure)
     """The leak of the shift itself; that of `now` is of the trend's span, which is another."""
     events: tuple[Event, ...] = ()
     told: tuple[Event, ...] = ()
