@@ -35,12 +35,13 @@ _Form = tuple[int, int, int, int, bytes]
 
 @dataclass(frozen=True, slots=True)
 class Block:
-    """One encoded block: `n` samples from `t0` to `t1`, both included."""
+    """One encoded block: `n` samples from `t0` to `t1`, both included; `empty` of them, where it is known, are NaN."""
 
     t0: int
     t1: int
     n: int
     blob: bytes
+    empty: int = 0
 
     @property
     def sha(self) -> bytes:
@@ -74,7 +75,7 @@ def encode(t: Times, v: Values, decimals: int, integers: tuple[int, Integers] | 
     common = REGULAR * regular | _HAS_NAN * bool(gone)
     flags, scale, start, width, body = _float_form(beside, v) if found is None else _integer_form(beside, *found)
     head = block_head(common | flags, scale, decimals, time_code << 6 | width, t.size, step, start)
-    return Block(int(t[0]), int(t[-1]), int(t.size), head + body)
+    return Block(int(t[0]), int(t[-1]), int(t.size), head + body, int(nan.sum()) if gone else 0)
 
 
 def _float_form(beside: bytes, v: Values) -> _Form:

@@ -22,6 +22,7 @@ from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Group, Kind
 from core.record.message import Message
 from storage.intake.mapping import ColumnUse
+from storage.intake.proposals import unit_of
 
 _SHOWN = 3
 _LETTERS = 24
@@ -50,6 +51,7 @@ class ColumnTable(QTableWidget):
         can_be_copied(self)
         self._channels: list[QComboBox] = []
         self._units: list[QComboBox] = []
+        self._rows: Sequence[tuple[str, Sequence[str]]] = ()
         self.setAccessibleName(self.tr("Columns of the table"))
         self.setHorizontalHeaderLabels(
             [
@@ -67,9 +69,10 @@ class ColumnTable(QTableWidget):
         self.setShowGrid(False)
         self.setWordWrap(True)
         head = self.horizontalHeader()
+        head.setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         for column, mode in enumerate(("Interactive", "Interactive", "Fixed", "Fixed", "Stretch")):
             head.setSectionResizeMode(column, QHeaderView.ResizeMode[mode])
-        for column, width in enumerate((120, 122, 234, 136)):
+        for column, width in enumerate((116, 120, 258, 136)):
             self.setColumnWidth(column, theme.px(width))
         head.sectionResized.connect(self._fit_all)
 
@@ -79,7 +82,7 @@ class ColumnTable(QTableWidget):
     ) -> None:  # fmt: skip
         """Show columns, or a long table's words, with their first values. `taken` are used for something else."""
         self.setRowCount(0)
-        self._channels, self._units = [], []
+        self._channels, self._units, self._rows = [], [], rows
         self.setRowCount(len(rows))
         for row, (name, values) in enumerate(rows):
             first = list(dict.fromkeys(values))[: _SHOWN * 2]
@@ -155,9 +158,8 @@ class ColumnTable(QTableWidget):
     def _channel_chosen(self) -> None:
         row = self._channels.index(self.sender())  # type: ignore[arg-type]
         key = str(self._channels[row].currentData() or "")
-        known = CHANNELS.get(key)
-        only = known.units[0].name if known is not None and len(known.units) == 1 else ""
-        self._fill_units(self._units[row], key, only)
+        name, values = self._rows[row]
+        self._fill_units(self._units[row], key, unit_of(key, name, values) if key else "")
         self._tell(row)
 
     def _unit_chosen(self) -> None:

@@ -82,6 +82,11 @@ class Intake:
         return sum(span.count for span in self.spans.values())
 
     @property
+    def empty_count(self) -> int:
+        """How many of them hold no value: the device wrote the moment and nothing for it."""
+        return sum(span.empty for span in self.spans.values())
+
+    @property
     def spans(self) -> Mapping[tuple[str, str], Span]:
         """Where the device samples lie, by episode and channel."""
         return self.chunks.spans if isinstance(self.chunks, FreshChunks) else {}

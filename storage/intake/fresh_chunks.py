@@ -19,11 +19,12 @@ _HEAD = Struct("<IqqI")
 
 @dataclass(slots=True)
 class Span:
-    """What there is of one episode and channel: from the first to the last sample, and how many."""
+    """What there is of one episode and channel: its first and last moment, how many samples, how many of them empty."""
 
     first: Instant
     last: Instant
     count: int
+    empty: int = 0
 
 
 class FreshChunks(Sequence[DraftChunk]):
@@ -45,6 +46,7 @@ class FreshChunks(Sequence[DraftChunk]):
         span = self.spans.setdefault(key, Span(block.t0, block.t1, 0))
         span.first, span.last = min(span.first, block.t0), max(span.last, block.t1)
         span.count += block.n
+        span.empty += block.empty
         self.samples += block.n
 
     def __len__(self) -> int:

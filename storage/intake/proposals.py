@@ -4,6 +4,7 @@ person; where two readings are possible it stays open, with a hint."""
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 from functools import lru_cache
 
@@ -155,10 +156,10 @@ def _uses(table: Table, taken: set[str], hints: dict[str, Message]) -> tuple[Col
         if key in used or (key and not _can_hold(CHANNELS[key], table.column(name))):
             key = ""
         used |= {key} - {""}
-        unit = _unit(CHANNELS[key], _plain(name)[1]) if key else ""
+        unit = ""
         if key:
             known = CHANNELS[key]
-            unit = unit or _evident_unit(known, table.column(name))
+            unit = unit_of(key, name, table.column(name))
             hint = _hint(known, table.column(name)) if not unit and len(known.units) > 1 else None
             if hint is not None:
                 hints[name] = hint
@@ -169,6 +170,16 @@ def _uses(table: Table, taken: set[str], hints: dict[str, Message]) -> tuple[Col
     return tuple(uses)
 
 
+def unit_of(channel: str, column: str, values: Sequence[str]) -> str:
+    """The unit of a column that holds a channel, where its name or its values settle it; "" where a person must.
+
+    >>> unit_of("pip", "Ppeak (mbar)", ["18"]), unit_of("paco2", "gas 2", ["6.1"])
+    ('hPa', '')
+    """
+    known = CHANNELS[channel]
+    return _unit(known, _plain(column)[1]) or _evident_unit(known, values)
+
+
 def _can_hold(known: Channel, values: tuple[str, ...]) -> bool:
     """Whether a column's values could be the channel's at all: numbers where it takes numbers."""
     if known.kind is not Kind.NUMBER or not values:
@@ -176,7 +187,7 @@ def _can_hold(known: Channel, values: tuple[str, ...]) -> bool:
     return any(_as_number(v) is not None for v in values)
 
 
-def _evident_unit(known: Channel, values: tuple[str, ...]) -> str:
+def _evident_unit(known: Channel, values: Sequence[str]) -> str:
     """The unit where there is one alone, or where the values themselves tell (a fraction from per cent, pH)."""
     if len(known.units) == 1:
         return known.unit
@@ -207,9 +218,10 @@ def _hint(known: Channel, values: tuple[str, ...]) -> Message | None:
 def _decimal(table: Table, mapping: Mapping) -> str:
     """The decimal mark, where the values show one and not both; open otherwise."""
     names = [c.column for c in mapping.used] if mapping.long is None else [mapping.long.value]
-    values = [v for name in names for v in table.column(name)]
-    comma = sum(1 for v in values if _COMMA.fullmatch(v))
-    point = sum(1 for v in values if _POINT.fullmatch(v))
+    comma, point = _marks(table, names)
+    if not comma and not point and mapping.long is None:  # whole numbers, or columns that a person has yet to name
+        others = {mapping.time.date, mapping.time.clock, mapping.episode_column, mapping.by_column}
+        comma, point = _marks(table, [name for name in table.header if name not in others])
     if table.book is not None and not comma:
         return "."
     if comma and not point:
@@ -217,12 +229,19 @@ def _decimal(table: Table, mapping: Mapping) -> str:
     return "." if not comma else ""
 
 
+def _marks(table: Table, columns: Sequence[str]) -> tuple[int, int]:
+    """How many values of columns are written with a decimal comma, and how many with a point."""
+    values = [v for name in columns for v in table.column(name)]
+    return sum(1 for v in values if _COMMA.fullmatch(v)), sum(1 for v in values if _POINT.fullmatch(v))
+
+
 def _writer(table: Table, mapping: Mapping) -> str:
-    """A machine's table has many rows of device channels in even steps; a gas or a note says a person's."""
+    """A machine's table has many rows of device channels; a gas or a note says a person's; of both it is asked."""
     groups = {CHANNELS[key].group for key in channels_of(mapping)}
+    of_machine = Group.DEVICE in groups and len(table.first) >= 30
     if groups & {Group.GAS, Group.EVENT, Group.PROFILE}:
-        return "person"
-    return "device" if Group.DEVICE in groups and len(table.first) >= 30 else ""
+        return "" if of_machine else "person"
+    return "device" if of_machine else ""
 
 
 def _as_number(text: str) -> float | None:
