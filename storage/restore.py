@@ -4,10 +4,7 @@ from __future__ import annotations
 
 import os
 import shutil
-from collections.abc import Iterator
-from contextlib import contextmanager
 from pathlib import Path
-from typing import TYPE_CHECKING
 
 from core.record.message import Message
 from storage import keys
@@ -17,9 +14,6 @@ from storage.errors import StoreError, os_failure, store_error, translated
 from storage.migrate.upgrade import migrate
 from storage.store_file import check_facts, data_key, is_encrypted, remove_store
 from storage.verify import findings
-
-if TYPE_CHECKING:
-    from storage.store import Store
 
 
 def restore(source: Path, new: Path, passphrase: str | None = None) -> Message | None:
@@ -42,7 +36,7 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
     unfinished = new.with_name(new.name + ".unfinished")
     try:
         key = data_key(source, passphrase) if encrypted and passphrase is not None else None
-        _copy(source, unfinished, key, closed=encrypted and key is None)
+        copy_of_backup(source, unfinished, key, closed=encrypted and key is None)
         if key is not None or not encrypted:
             _check_sound(unfinished, key)
         sync_file(unfinished)
@@ -64,39 +58,6 @@ def restore(source: Path, new: Path, passphrase: str | None = None) -> Message |
             keys.envelope_path(new).unlink(missing_ok=True)
 
 
-@contextmanager
-def looked_into(source: Path, passphrase: str | None, beside: Path) -> Iterator[Store]:
-    """A backup opened for reading, of whatever released format. Of one of an older format a copy is brought up to
-    date and opened, which lies beside the store to be made, encrypted as the backup is, and goes again.
-
-    Raises:
-        StoreError: as `Store.open`; `store.exists` where such a copy of another look still lies there.
-    """
-    from storage.store import Store
-
-    try:
-        store = Store.open(source, passphrase=passphrase, read_only=True)
-    except StoreError as error:
-        if error.message.key != "store.older":
-            raise
-    else:
-        with store:
-            yield store
-        return
-    copy = beside.with_name(beside.name + ".looked-into")
-    check_free(copy)
-    key = data_key(source, passphrase)
-    try:
-        _copy(source, copy, key, closed=False)
-        if key is not None:
-            keys.write_envelope(keys.envelope_path(copy), keys.read_envelope(keys.envelope_path(source)))
-        migrate(copy, key, None)
-        with Store.open(copy, passphrase=passphrase, read_only=True) as store:
-            yield store
-    finally:
-        remove_store(copy)
-
-
 def _of_the_backup(error: StoreError, source: Path, unfinished: Path) -> StoreError:
     """What is wrong with the copy is wrong with the file that was given: that one is named."""
     named, values = {unfinished.name, unfinished.name.removesuffix(".unfinished")}, dict(error.message.values)
@@ -111,7 +72,7 @@ def _journal_of(store: Path) -> int:
     return journal.stat().st_size if journal.is_file() else 0
 
 
-def _copy(source: Path, target: Path, key: bytes | None, *, closed: bool) -> None:
+def copy_of_backup(source: Path, target: Path, key: bytes | None, *, closed: bool) -> None:
     """A copy of a backup. A store that was copied with its journal holds its newest entries there: they come along.
 
     Raises:

@@ -36,7 +36,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
 
 def _prove(context: Context, backup: Path, passphrase: str | None) -> None:
     """Where people sign in, who restores gives a PIN. A backup that stays closed cannot say who its people are."""
-    from storage.restore import looked_into
+    from storage.looking_into import looked_into
 
     if not operations.is_encrypted_and_closed(backup, passphrase):
         with looked_into(backup, passphrase, context.store_path) as source:

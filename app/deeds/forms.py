@@ -12,6 +12,7 @@ from app.strip.log_strip import LogStrip
 from app.window.shell import Shell
 
 if TYPE_CHECKING:
+    from app.dialogs.drafted import DraftedDialog
     from app.forms.entry_form import EntryForm
     from app.forms.previewed_form import PreviewedForm
     from app.keeping.form_drafts import LostForm
@@ -22,7 +23,7 @@ class FormDeeds(Doer):
 
     lost: LostForm | None = None
     """A form that was being filled in when a program ended."""
-    form: PreviewedForm | None = None
+    form: PreviewedForm | DraftedDialog | None = None
     """The form that was opened last."""
 
     def __init__(self, window: Shell, keeping: Keeping) -> None:
@@ -78,7 +79,7 @@ class FormDeeds(Doer):
         form.recorded.connect(self._form_recorded)
         self.show_form(form, answer.record.key)
 
-    def show_form(self, form: PreviewedForm, episode: str = "") -> None:
+    def show_form(self, form: PreviewedForm | DraftedDialog, episode: str = "") -> None:
         """Open a form; what is typed into it outlives a crash."""
         drafts = self._keeping.drafts
         if drafts is not None:

@@ -57,7 +57,8 @@ class LogDeeds(FormDeeds):
         self.show_form(self._begin_form)
 
     def openers(self) -> dict[str, Callable[[], None]]:
-        return {**super().openers(), "BeginForm": self.do_new_episode}
+        return {**super().openers(), "BeginForm": self.do_new_episode, "CorrectDialog": self.do_correct,
+                "DeviceSpanDialog": self.do_device_span}  # fmt: skip
 
     def _episode_begun(self, recorded: Recorded) -> None:
         self.strip.remember(recorded)
@@ -133,7 +134,7 @@ class LogDeeds(FormDeeds):
             self.model, feed.answers[key].record, labels, self.window.reader, self.window.theme, self.window
         )
         dialog.recorded.connect(self.strip.remember)
-        dialog.open()
+        self.show_form(dialog, key)
 
     def do_device_span(self) -> None:
         """Leave out or move a span of device samples of this patient."""
@@ -146,4 +147,4 @@ class LogDeeds(FormDeeds):
             self.model, key, self.strip.whom.text(), self.window.reader, self.window.theme, self.window
         )
         dialog.recorded.connect(self.strip.remember)
-        dialog.open()
+        self.show_form(dialog, key)

@@ -16,7 +16,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.dialogs.asking import AskingDialog
+from app.dialogs.drafted import DraftedDialog
 from app.forms.typed_time import typed_near
 from app.look.chooser import Chooser
 from app.look.copying import can_be_copied
@@ -40,6 +40,8 @@ from core.record.units import written
 
 _ENTRY = Qt.ItemDataRole.UserRole
 _BY = 3
+_OF = "entry"
+"""The name in a draft of the value that it is about."""
 
 
 class Act(StrEnum):
@@ -50,7 +52,7 @@ class Act(StrEnum):
     MOVE = "move"
 
 
-class CorrectDialog(AskingDialog):
+class CorrectDialog(DraftedDialog):
     """Newest entries first. `recorded` after it was done, so that it can be undone."""
 
     recorded = Signal(object)
@@ -164,6 +166,23 @@ class CorrectDialog(AskingDialog):
             self.value.setText(found.words or "" if is_mark else _editable(found))
             moment = local(found.at, self._reader.zone)
             self.time.setText(f"{moment:%H:%M}")
+            self.begin_draft("value", "time")
+
+    def typed(self) -> dict[str, str]:
+        """What is half typed, and for which value."""
+        found, entry = super().typed(), self._entry()
+        return found | {_OF: entry.id} if found and entry is not None else found
+
+    def put(self, typed: Mapping[str, str]) -> None:
+        """Choose the value that it was typed for; where that stands no more nothing but the reason comes back."""
+        rows = [self.list.topLevelItem(n) for n in range(self.list.topLevelItemCount())]
+        own = next((item for item in rows if item is not None and item.data(0, _ENTRY) == typed.get(_OF)), None)
+        if own is None:
+            super().put({name: text for name, text in typed.items() if name == "reason"})
+            self.refuse(self.tr("The value that this was typed for stands no more: choose again."))
+            return
+        self.list.setCurrentItem(own)
+        super().put(typed)
 
     def _entry(self) -> Entry | None:
         item = self.list.currentItem()

@@ -5,7 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtWidgets import QLabel, QLineEdit, QListWidget, QListWidgetItem, QPushButton, QWidget
 
-from app.dialogs.asking import AskingDialog
+from app.dialogs.drafted import DraftedDialog
 from app.forms.typed_time import typed_time
 from app.look.choice_row import ChoiceRow
 from app.look.formats import span, trimmed
@@ -24,7 +24,7 @@ LEAVE_OUT, MOVE = "leave out", "move"
 _ASK_MS = 250
 
 
-class DeviceSpanDialog(AskingDialog):
+class DeviceSpanDialog(DraftedDialog):
     """For one episode. How many samples are meant is said before anything is recorded; `recorded` is for undo."""
 
     recorded = Signal(object)
@@ -54,6 +54,7 @@ class DeviceSpanDialog(AskingDialog):
         self._ask.timeout.connect(self._ask_count)
         self._lay_out()
         self._connect()
+        self.begin_draft()
         self.resize(theme.px(680), theme.px(440))
         self._ask_list()
 

@@ -15,6 +15,7 @@ from app.operations.outcome import Outcome
 from app.session.failure import Failure
 
 if TYPE_CHECKING:
+    from app.dialogs.drafted import DraftedDialog
     from app.forms.previewed_form import PreviewedForm
     from app.session.model import SessionModel
 
@@ -44,14 +45,14 @@ class FormDrafts(QObject):
     def __init__(self, model: SessionModel, mark: str, parent: QObject) -> None:
         super().__init__(parent)
         self._model, self._name = model, FORM + mark
-        self._form: PreviewedForm | None = None
+        self._form: PreviewedForm | DraftedDialog | None = None
         self._episode, self._kept = "", ""
         self._rest = QTimer(self)
         self._rest.setSingleShot(True)
         self._rest.setInterval(AFTER_MS)
         self._rest.timeout.connect(self.keep)
 
-    def follow(self, form: PreviewedForm, episode: str = "") -> None:
+    def follow(self, form: PreviewedForm | DraftedDialog, episode: str = "") -> None:
         """A form has opened."""
         self._form, self._episode = form, episode
         form.changed.connect(self._rest.start)

@@ -172,7 +172,7 @@ def restore(store: object, who: str, now: Instant, request: RestoreRequest) -> O
         StoreError: `store.exists`, `store.missing`, `store.not_a_store`, `store.damaged`, `key.*`.
         RecordError: `people.lead_needed`, `people.unknown`, `people.wrong_pin`.
     """
-    from storage.restore import looked_into
+    from storage.looking_into import looked_into
     from storage.store import Store
 
     if not is_encrypted_and_closed(request.backup, request.passphrase):

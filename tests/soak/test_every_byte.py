@@ -8,9 +8,10 @@ from pathlib import Path
 
 import pytest
 
-from storage.store_file import data_key
 from storage.salvage import salvage
 from storage.store import Store
+from storage.store_file import data_key
+from tests.support import flipped_figures
 from tests.support.flips import (
     CHEAP,
     NOW,
@@ -34,6 +35,19 @@ def test_every_byte_of_a_plain_store(tmp_path: Path, capsys: pytest.CaptureFixtu
     with capsys.disabled():
         print(f"\nplain, {path.stat().st_size} bytes: { {k: len(v) for k, v in sorted(found.items())} }")
     assert "wrong" not in found, found["wrong"]
+
+
+def test_figures_of_a_plain_store_of_which_every_byte_in_use_is_flipped(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """Every byte in use on each page that figures are read from: the same figures, or a refusal."""
+    path = flipped_figures.small(tmp_path / "ward.luff")
+    tables = ("entry", "chunk", "batch", "source", "policy", "document", "person_event", "episode_now", "cache")
+    places = list(flipped_figures.used_bytes(path, tables))[::STEP]
+    found = flipped_figures.outcomes(path, places)
+    with capsys.disabled():
+        print(f"\nfigures, {len(places)} bytes: { {k: len(v) for k, v in sorted(found.items())} }")
+    assert "others" not in found, found["others"]
 
 
 def test_every_byte_of_an_encrypted_store(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

@@ -5,6 +5,7 @@ import sys
 
 import pytest
 
+from app.dialogs.correct import Act, CorrectDialog
 from app.forms.begin_form import BeginForm
 from app.forms.end_form import EndForm
 from app.forms.gas_form import GasForm
@@ -69,6 +70,71 @@ def test_a_form_that_was_being_filled_in_outlives_a_crash(qtbot, tmp_path):
         form.reject()
         settled(qtbot, window)
         assert drafts(path) == []
+
+
+CORRECTED = """
+def typed():
+    log = window.doers.log
+    if not window.feed.is_ready or window.model.runner.is_busy:
+        return
+    if log.form is None:
+        window.select("bed-3")
+        log.do_correct()
+        dialog = log.form
+        dialog.list.setCurrentItem(dialog.list.topLevelItem(2))
+        dialog.act.setCurrentIndex(1)
+        dialog.reason.setText("read off the wrong mon")
+    elif window.keeping.drafts.forms._kept:
+        os._exit(9)
+"""
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="ends a program as POSIX does")
+def test_a_reason_half_typed_into_a_correction_outlives_a_crash(qtbot, tmp_path):
+    """It comes back for the very value that it was typed for."""
+    path = make_store(tmp_path / "ward.luffmark")
+    crash_while(CORRECTED, path)
+    (kept,) = drafts(path)
+    assert kept["form"] == "CorrectDialog"
+    with Store.open(path) as store:
+        head = store.head()
+    with open_window(qtbot, path) as window:
+        notices = window.keeping.notices
+        until(qtbot, lambda: "Correct or withdraw, Bed 3" in notices.plain())
+        notices.ways["form_again"].click()
+        dialog = window.doers.log.form
+        assert isinstance(dialog, CorrectDialog)
+        assert dialog.reason.text() == "read off the wrong mon"
+        assert dialog.act.currentData() == Act.WITHDRAW
+        assert dialog._entry().id == kept["typed"]["entry"]
+        assert dialog.list.indexOfTopLevelItem(dialog.list.currentItem()) == 2
+        settled(qtbot, window)
+        assert window.model.session.head == head
+        dialog.reject()
+        settled(qtbot, window)
+        assert drafts(path) == []
+
+
+def test_a_value_that_is_only_looked_at_is_no_draft(qtbot, tmp_path):
+    path = make_store(tmp_path / "ward.luffmark")
+    with open_window(qtbot, path) as window:
+        window.select("bed-7")
+        window.doers.log.do_correct()
+        dialog = window.doers.log.form
+        for row in range(3):
+            dialog.list.setCurrentItem(dialog.list.topLevelItem(row))
+            assert dialog.typed() == {}
+        dialog.put({"reason": "misread", "entry": "gone since"})
+        assert dialog.reason.text() == "misread"
+        assert "stands no more" in dialog.wrong.text()
+        dialog.reject()
+        window.doers.log.do_device_span()
+        span = window.doers.log.form
+        span.put({"start": "03:10", "reason": "on nobody"})
+        assert span.typed() == {"start": "03:10", "reason": "on nobody"}
+        settled(qtbot, window)
+        span.reject()
+        settled(qtbot, window)
 
 
 def opened(window, kind):
