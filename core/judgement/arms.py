@@ -79,6 +79,8 @@ def _co2_verdict(
         return OVER_CORRECTION
     good = ph_sign == 1 or co2_sign == -1
     bad = ph_sign == -1 or co2_sign == 1
+    if (ph_sign is None or co2_sign is None) and not bad:
+        return None  # what is missing may have got worse: half a gas makes nobody better, nor unchanged
     return MIXED if good and bad else BETTER if good else WORSE if bad else NO_CHANGE
 
 

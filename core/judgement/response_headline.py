@@ -34,7 +34,8 @@ def headline(
     by_at = {g.at: g for g in ctx.gases if g.at in moments} if moments else {}
     steady = [j for j in judged if _counts(by_at[j.at], j)]
     decided = [j for j in steady if j.verdict is not None]
-    if steady and by_at[steady[-1].at].in_doubt and steady[-1].verdict is None:
+    cannot_tell = bool(steady) and steady[-1].verdict is None
+    if cannot_tell and (by_at[steady[-1].at].in_doubt or (decided and decided[-1].verdict == arms.BETTER)):
         # an older better must not stand in for the newest gas: somebody has to settle what that one says
         return Headline(arms.NOT_JUDGED, steady[-1].at, steady[-1].state, steady[-1].why)
     if decided:
