@@ -156,7 +156,9 @@ class IntakeDialog(AskingDialog):
     def words(self, intake: Intake) -> str:
         """The file in a few sentences."""
         of = _counted(len(intake.episodes), self.tr("1 episode"), self.tr("{count} episodes"))
-        brought = [_counted(len(intake.entries), self.tr("1 entry"), self.tr("{count} entries"))]
+        brought = []
+        if intake.entries or not intake.sample_count:
+            brought.append(_counted(len(intake.entries), self.tr("1 entry"), self.tr("{count} entries")))
         if intake.sample_count:
             text = self.tr("{count} device samples")
             brought.append(_counted(intake.sample_count, self.tr("1 device sample"), text))
@@ -164,6 +166,8 @@ class IntakeDialog(AskingDialog):
         joined = self.tr(" and ").join(brought)
         parts = [told.format(name=self._path.name, brought=joined, episodes=of)]
         counts = (
+            (intake.empty_count, self.tr("1 device sample is empty: a gap."),
+             self.tr("{count} device samples are empty: gaps.")),
             (intake.repeated_in_store, self.tr("1 row is in the store already and is skipped."),
              self.tr("{count} rows are in the store already and are skipped.")),
             (intake.overlaid, self.tr("1 device sample that was taken in before lies under it and no longer counts."),

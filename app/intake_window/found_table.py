@@ -7,11 +7,13 @@ from itertools import islice
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableWidget, QTableWidgetItem, QWidget
 
 from app.intake_window.new_rows import new_rows
 from app.look.copying import can_be_copied
 from app.look.formats import inert
+from app.look.wrapped_rows import fit_rows
 from app.words import Reader, sentence
 
 if TYPE_CHECKING:
@@ -19,6 +21,8 @@ if TYPE_CHECKING:
 
 MOST_ROWS = 500
 """Rows of the table; a file with more faults is not repaired by reading on."""
+_MOST_SHARE = 27
+"""Per cent of the width for what a row is, and for its value."""
 MOST_LETTERS = 40
 """Letters of a value: the sentence beside it needs the room."""
 
@@ -40,9 +44,8 @@ class FoundTable(QTableWidget):
         self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.setWordWrap(True)
         self.verticalHeader().hide()
-        for column in range(3):
-            self.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
         self.horizontalHeader().setSectionResizeMode(3, QHeaderView.ResizeMode.Stretch)
+        self.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.horizontalHeader().sectionResized.connect(self._fit_rows)
         self.itemChanged.connect(self._changed)
 
@@ -54,7 +57,7 @@ class FoundTable(QTableWidget):
         found += [(r, self.tr("left aside")) for r in intake.aside]
         rows = [self._found_row(row, word) for row, word in found[:MOST_ROWS]]
         words = {"new": self.tr("new"), "corrects": self.tr("corrects"), "withdraws": self.tr("withdraws"),
-                 "samples": self.tr("samples")}  # fmt: skip
+                 "samples": self.tr("samples"), "empty": self.tr("empty")}  # fmt: skip
         rows += islice(new_rows(intake, self._reader, words), MOST_ROWS - len(rows))
         self._filling = True
         self._refused = len(refused) if intake.whole else 0
@@ -67,8 +70,27 @@ class FoundTable(QTableWidget):
                 self.setItem(n, column, item)
             if n < self._refused:
                 self._add_tick(n)
-        self.resizeRowsToContents()
+        self._fit_columns()
+        fit_rows(self, 3)
         self._filling = False
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit_columns()
+
+    def _fit_columns(self) -> None:
+        """Columns as wide as they need, the reasons the most of it: what and value wrap where text is large.
+
+        Beside a tick the line's number needs room that the style does not ask for.
+        """
+        for column in (1, 2):
+            wanted = max(self.sizeHintForColumn(column), self.horizontalHeader().sectionSizeHint(column))
+            self.setColumnWidth(column, min(wanted, self.viewport().width() * _MOST_SHARE // 100))
+        texts = [item.text() for row in range(self.rowCount()) if (item := self.item(row, 0)) is not None]
+        metrics = self.fontMetrics()
+        widest = max((metrics.horizontalAdvance(text) for text in texts), default=0)
+        tick = metrics.height() * 2 if self._refused else 0
+        self.setColumnWidth(0, max(self.horizontalHeader().sectionSizeHint(0), widest + tick + metrics.height() * 2))
 
     def _add_tick(self, row: int) -> None:
         item = self.item(row, 0)
@@ -103,4 +125,4 @@ class FoundTable(QTableWidget):
     def _fit_rows(self, column: int, *_: int) -> None:
         """Sentences wrap: rows follow the width that the last column gets."""
         if column == self.columnCount() - 1:
-            self.resizeRowsToContents()
+            fit_rows(self, column)

@@ -7,7 +7,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Signal
-from PySide6.QtWidgets import QBoxLayout, QComboBox, QHBoxLayout, QLabel, QSpinBox, QWidget
+from PySide6.QtWidgets import QBoxLayout, QComboBox, QHBoxLayout, QLabel, QSizePolicy, QSpinBox, QWidget
 
 from app.intake_window.column_table import NoWheel
 from app.look.flow_row import FlowRow
@@ -45,24 +45,32 @@ class HowWritten(QWidget):
         self.header.setKeyboardTracking(False)
         self.header.setButtonSymbols(QSpinBox.ButtonSymbols.NoButtons)
         self._still = NoWheel(self)
-        self._labels: dict[QWidget, QLabel] = {}
+        self._pairs: dict[QWidget, QWidget] = {}
         large = theme.text_scale > LARGE
         whole = QBoxLayout(QBoxLayout.Direction.TopToBottom if large else QBoxLayout.Direction.LeftToRight, self)
         whole.setContentsMargins(0, 0, 0, 0)
         whole.setSpacing(theme.px(8))
+        self.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Maximum)
         whole.addWidget(self.about, 0 if large else 1)
         row = FlowRow(None, theme.px(8)) if large else QHBoxLayout()
         whole.addLayout(row)
-        fields = ((self.tr("Text in"), self.encoding), (self.tr("Columns apart by"), self.mark),
+        if large:
+            self.about.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Fixed)
+        apart = self.tr("Apart by") if large else self.tr("Columns apart by")
+        fields = ((self.tr("Text in"), self.encoding), (apart, self.mark),
                   (self.tr("Header on line"), self.header), (self.tr("Sheet"), self.sheet))  # fmt: skip
         for word, field in fields:
             label = QLabel(word)
             label.setProperty("role", "quiet")
             label.setBuddy(field)
             field.setAccessibleName(word)
-            self._labels[field] = label
-            row.addWidget(label)
-            row.addWidget(field)
+            pair = QWidget()
+            beside = QHBoxLayout(pair)
+            beside.setContentsMargins(0, 0, 0, 0)
+            beside.addWidget(label)
+            beside.addWidget(field)
+            row.addWidget(pair)
+            self._pairs[field] = pair
         for box, letters in ((self.sheet, 9), (self.encoding, 9), (self.mark, 8)):
             box.setMinimumContentsLength(letters)
             box.installEventFilter(self._still)
@@ -87,8 +95,7 @@ class HowWritten(QWidget):
         self.header.setValue(d.header_line)
         is_text = table.book is None
         for field, matters in ((self.sheet, len(table.sheets) > 1), (self.encoding, is_text), (self.mark, is_text)):
-            field.setVisible(matters)
-            self._labels[field].setVisible(matters)
+            self._pairs[field].setVisible(matters)
         self._filling = False
 
     def _fill_marks(self) -> None:
@@ -106,7 +113,8 @@ class HowWritten(QWidget):
         self.mark.setEditText(self.mark.itemText(index))
 
     def _words(self, table: Table) -> str:
-        text = self.tr("{count} columns").format(count=len(table.header))
+        count = len(table.header)
+        text = self.tr("1 column") if count == 1 else self.tr("{count} columns").format(count=count)
         if table.dialect.encoding_is_sure:
             return text
         return text + self.tr(". The encoding is assumed: look at letters with accents.")

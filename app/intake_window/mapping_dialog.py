@@ -21,7 +21,7 @@ from app.intake_window.answers_form import AnswersForm
 from app.intake_window.column_table import ColumnTable
 from app.intake_window.how_written import LARGE, HowWritten
 from app.intake_window.preview_table import PreviewTable
-from app.look.fitted import FittedDialog, fit
+from app.look.fitted import FittedDialog, RollArea, fit
 from app.look.theme import Theme
 from app.operations import mapping as operations
 from app.operations.intake import ReadRequest
@@ -88,31 +88,37 @@ class MappingDialog(FittedDialog):
         self.name.setAccessibleName(self.tr("Keep as"))
         self.name.setMaxLength(80)
         self.kept.setAccessibleName(self.tr("Mapping"))
+        self.columns.setMinimumHeight(px(200))
+        self.preview.setMinimumHeight(px(130))
+        rolled = QWidget()
+        inside = QVBoxLayout(rolled)
+        inside.setContentsMargins(0, 0, 0, 0)
+        inside.setSpacing(px(8))
+        if self._theme.text_scale > LARGE:
+            inside.addWidget(self.written)
+        inside.addLayout(self._head())
+        inside.addLayout(self._halves(), 5)
+        inside.addWidget(self.preview_word)
+        inside.addWidget(self.preview, 3)
         column = QVBoxLayout(self)
         column.setContentsMargins(px(20), px(16), px(20), px(16))
         column.setSpacing(px(8))
-        column.addLayout(self._head())
-        column.addLayout(self._halves(), 5)
-        column.addWidget(self.preview_word)
-        column.addWidget(self.preview, 3)
+        column.addWidget(RollArea(rolled), 1)
         column.addWidget(self.asked)
         column.addLayout(self._foot())
 
-    def _head(self) -> QVBoxLayout:
-        """How it is written and which mapping; under each other where text is large."""
-        whole, head = QVBoxLayout(), QHBoxLayout()
-        if self._theme.text_scale > LARGE:
-            whole.addWidget(self.written)
-        else:
+    def _head(self) -> QHBoxLayout:
+        """How it is written, where text is not too large for one line, and which mapping."""
+        head = QHBoxLayout()
+        if self._theme.text_scale <= LARGE:
             head.addWidget(self.written, 1)
-        whole.addLayout(head)
         self._kept_label = QLabel(self.tr("Mapping"))
         self._kept_label.setProperty("role", "quiet")
         self._kept_label.setBuddy(self.kept)
         self.kept.setMinimumContentsLength(14)
         head.addWidget(self._kept_label)
         head.addWidget(self.kept, 1 if self._theme.text_scale > LARGE else 0)
-        return whole
+        return head
 
     def _halves(self) -> QHBoxLayout:
         halves = QHBoxLayout()

@@ -18,7 +18,7 @@ Row = tuple[str, str, str, str]
 
 
 def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[Row]:
-    """Rows of (line, what, value, where and when). `words` name what is done: new, corrects, withdraws, samples."""
+    """Rows of (line, what, value, where and when). `words`: new, corrects, withdraws, samples, empty."""
     told = replace(reader, near=None)  # a file is of any day
     for draft in intake.entries:
         e = draft.entry
@@ -27,7 +27,8 @@ def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[
     for (episode, channel), span in intake.spans.items():
         when = f"{told.time(span.first)} - {told.time(span.last)}"
         what = f"{words['new']}, {channel_name(channel)}"
-        yield "", what, f"{span.count:,} {words['samples']}", f"{episode}, {when}"
+        empty = f" ({span.empty:,} {words['empty']})" if span.empty else ""
+        yield "", what, f"{span.count:,} {words['samples']}{empty}", f"{episode}, {when}"
 
 
 def _value(e: NewEntry) -> str:

@@ -21,6 +21,7 @@ from PySide6.QtWidgets import (
 from app.look.copying import can_be_copied
 from app.look.fitted import FittedDialog, fit
 from app.look.theme import Theme
+from app.look.wrapped_rows import fit_rows
 from app.operations import intake as operations
 from app.operations.outcome import Outcome
 from app.session.failure import Failure
@@ -59,6 +60,7 @@ class TakenDialog(FittedDialog):
         for column in range(5):
             self.table.horizontalHeader().setSectionResizeMode(column, QHeaderView.ResizeMode.ResizeToContents)
         self.table.horizontalHeader().setSectionResizeMode(5, QHeaderView.ResizeMode.Stretch)
+        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.said = QLabel(self.tr("Choose a file to see what its withdrawal would take back."))
         self.said.setWordWrap(True)
         self.said.setTextFormat(Qt.TextFormat.PlainText)
@@ -93,7 +95,7 @@ class TakenDialog(FittedDialog):
                 item.setToolTip(text)
                 item.setData(_KEY, "" if s.id in gone else s.id)
                 self.table.setItem(row, column, item)
-        self.table.resizeRowsToContents()
+        fit_rows(self.table, 5)
         self._chosen()
         if self._said_after:
             self.said.setText(self._said_after)
@@ -102,7 +104,7 @@ class TakenDialog(FittedDialog):
     def _fit_rows(self, column: int, *_: int) -> None:
         """What a reading was told wraps: rows follow the width that the last column gets."""
         if column == self.table.columnCount() - 1:
-            self.table.resizeRowsToContents()
+            fit_rows(self.table, column)
 
     def _how(self, s: TakenSource) -> str:
         """The facts of a reading that matter to a person."""

@@ -285,3 +285,22 @@ def test_leaving_the_field_of_the_delimiter_says_nothing(qtbot, window, gases):
     assert dialog.written.said == Writing()
     assert dialog.looked is looked
     dialog.reject()
+
+
+def test_a_column_that_a_person_names_brings_the_unit_that_its_header_says(qtbot, window, tmp_path):
+    path = tmp_path / "trend.csv"
+    rows = [f"27.03.2026 21:{m:02d};18,5;{'---' if m < 20 else '11,5'};480" for m in range(10, 50)]
+    path.write_text("\n".join(["Zeit;Spitze (mbar);MinVol (l/min);Vte (ml)", *rows]))
+    dialog = open_mapping(qtbot, window, path)
+    choose(dialog.columns.box_of("Spitze (mbar)"), "pip")
+    choose(dialog.columns.box_of("MinVol (l/min)"), "mv")
+    assert dialog.columns.box_of("Spitze (mbar)", unit=True).currentData() == "hPa"
+    assert dialog.columns.box_of("MinVol (l/min)", unit=True).currentData() == "L/min"
+    choose(dialog.answers.episode, "bed-7")
+    assert dialog.questions() == ()
+    dialog.go.click()
+    intake = visible(window, IntakeDialog)
+    until(qtbot, lambda: intake.intake is not None)
+    assert "10 device samples are empty: gaps." in intake.summary.text()
+    assert any("40 samples (10 empty)" in intake.table.item(r, 2).text() for r in range(intake.table.rowCount()))
+    intake.reject()

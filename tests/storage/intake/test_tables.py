@@ -287,6 +287,15 @@ def test_the_preview_shows_what_will_be_recorded_and_what_is_open(write: Write) 
     assert shown == {(d.entry.channel, d.entry.at, d.entry.number) for d in intake.entries}
 
 
+def test_a_trend_with_remarks_of_a_person_asks_who_wrote_it(write: Write) -> None:
+    rows = "".join(f"2026-03-27 01:{m:02d},2{m % 10},{'calm' if m == 3 else ''}\n" for m in range(40))
+    assert propose(open_table(write("Time,Leak (L/min),Remark\n" + rows)), ZONE).mapping.written_by == ""
+    assert propose(open_table(write("Time,Leak (L/min)\n" + rows.replace(",calm", "").replace(",\n", "\n"))),
+                   ZONE).mapping.written_by == "device"  # fmt: skip
+    assert propose(open_table(write("Time,Leak (L/min),Remark\n2026-03-27 01:00,20,calm\n")),
+                   ZONE).mapping.written_by == "person"  # fmt: skip
+
+
 # times
 
 
