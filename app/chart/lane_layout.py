@@ -117,7 +117,7 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
     folded = width - left - state - due < px(_LEAST_CLOCK) - 1
     if folded:
         longest = max([*states, *dues, px(60)])
-        state = min(longest + px(56), width * 0.36)
+        state = min(longest + px(56), width * 0.43)
     head, gap, lane = _heights(len(spec.lanes), px(_FOLDED) if folded else 0, theme, height)
     unit = float(theme.text_scale)
     return LaneGeometry(width, head, lane, gap, left, state, due, folded, spec.start, spec.end, unit)

@@ -41,7 +41,7 @@ class ActionFinder(FittedDialog):
         self.search.returnPressed.connect(self._take)
         self.list.itemActivated.connect(self._take)
         self._narrow("")
-        fit(self, theme, 820, 520)
+        fit(self, theme, 1040, 560)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() in (Qt.Key.Key_Down, Qt.Key.Key_Up) and self.search.hasFocus():

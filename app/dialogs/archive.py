@@ -75,7 +75,7 @@ class ArchiveDialog(AskingDialog):
         can_be_copied(table)
         table.setAccessibleName(self.tr("Ended episodes"))
         table.setHorizontalHeaderLabels(heads)
-        table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         table.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Stretch)
         table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
@@ -96,9 +96,10 @@ class ArchiveDialog(AskingDialog):
             self.days.setValue(days)
             told = self.tr("Ended episodes are kept for {days} days. Then a ward lead may remove them for good.")
             told = told.format(days=days)
-        self.told.setText(
-            told + " " + self.tr("An archive is a copy that opens in this window, with the same passphrase.")
-        )
+        told += " " + self.tr("An archive is a copy that opens in this window, with the same passphrase.")
+        if not self.ended:
+            told += " " + self.tr("No episode has ended yet.")
+        self.told.setText(told)
         self.grow()
         zone = self._reader.zone
         self.table.setRowCount(len(self.ended))

@@ -44,7 +44,7 @@ class AskingDialog(FittedDialog):
         inside = QWidget()
         self.body = QVBoxLayout()
         self._column = QVBoxLayout(inside)
-        self._column.setContentsMargins(0, 0, theme.px(4), 0)
+        self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(theme.px(10))
         self._column.addLayout(self.body)
         self._column.addLayout(self.form)

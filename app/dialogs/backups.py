@@ -96,9 +96,7 @@ class BackupsDialog(AskingDialog):
         self.paths = backups_in(folder, self._store) if folder.is_dir() else {}
         more = "" if self.paths else " " + self.tr("None lies there yet.")
         if any(backups.key_file_of(path) for path in self.paths.values()):
-            more += " " + self.tr(
-                "An encrypted one opens only with its key file: copy both."
-            )
+            more += " " + self.tr("An encrypted one opens only with its key file: copy both.")
         self.told.setText(told.format(folder=folder) + more)
         rows: list[tuple[Instant, Path]] = sorted(self.paths.items(), reverse=True)
         self._rows = [path for _, path in rows]

@@ -45,7 +45,7 @@ class ClosedHandoversDialog(FittedDialog):
         can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Closed handovers"))
         self.table.setHorizontalHeaderLabels(heads)
-        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)

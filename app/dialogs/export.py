@@ -64,7 +64,7 @@ class ExportDialog(AskingDialog):
         self.field(self.tr("What"), self.groups)
         self.field(self.tr("When"), self.span)
         for box in (self.deidentified, self.dictionary):
-            self.form.addRow("", box)
+            self.form.addRow(box)
         self.resize(theme.px(560), theme.px(600))
 
     def submit(self) -> None:

@@ -81,9 +81,11 @@ class PanelEditor(FittedDialog):
         for box in (self.list, self.channels):
             box.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         left = QVBoxLayout()
+        left.setSpacing(px(6))
         left.addWidget(self.list, 1)
         left.addLayout(self._tools())
         upper = QHBoxLayout()
+        upper.setSpacing(px(16))
         upper.addLayout(left, 2)
         upper.addLayout(self._fields(), 3)
         inside = QWidget()
@@ -116,7 +118,8 @@ class PanelEditor(FittedDialog):
         for n, (label, field) in enumerate(rows):
             label.setBuddy(field)
             label.setWordWrap(True)
-            grid.addWidget(label, n, 0, Qt.AlignmentFlag.AlignTop)
+            high = field is self.channels  # the name of a list stands at its top, of a field at its middle
+            grid.addWidget(label, n, 0, Qt.AlignmentFlag.AlignTop if high else Qt.AlignmentFlag.AlignVCenter)
             grid.addWidget(field, n, 1)
         grid.addWidget(self.bands, len(rows), 1)
         grid.setColumnStretch(1, 1)
@@ -133,6 +136,7 @@ class PanelEditor(FittedDialog):
         )
         QShortcut(QKeySequence.StandardKey.Undo, self, self.undo)
         tools = QGridLayout()
+        tools.setSpacing(self._theme.px(6))
         for n, (word, slot) in enumerate(buttons):
             tools.addWidget(self._button(word, slot), n // 3, n % 3)
         return tools
@@ -148,8 +152,8 @@ class PanelEditor(FittedDialog):
         foot.addStretch(1)
         self.keep_button = self._button(self.tr("Keep"), self.keep)
         self.keep_button.setProperty("role", "primary")
-        foot.addWidget(self._button(self.tr("Leave"), self.reject))
         foot.addWidget(self.keep_button)
+        foot.addWidget(self._button(self.tr("Leave"), self.reject))
         return foot
 
     def _button(self, word: str, slot: Callable[[], None]) -> QPushButton:

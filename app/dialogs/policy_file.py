@@ -55,7 +55,7 @@ class PolicyFileDialog(AskingDialog):
         table.verticalHeader().hide()
         table.setShowGrid(False)
         table.setWordWrap(True)
-        table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         return table
 
     def _show(self, path: Path, in_force: str) -> None:
@@ -70,8 +70,9 @@ class PolicyFileDialog(AskingDialog):
             return
         policy, changes = read_policy(self._text), between(self._text, in_force)
         name = self.tr("{name}, version {version}").format(name=policy.name, version=policy.version)
-        said = self.tr("{name}: usable. {count} value(s) are other than in force.")
-        said = said.format(name=name, count=len(changes))
+        one = self.tr("{name}: usable. One value is other than in force.")
+        many = self.tr("{name}: usable. {count} values are other than in force.")
+        said = (one if len(changes) == 1 else many).format(name=name, count=len(changes))
         self.head.setText(said if changes else self.tr("{name}: the same as in force.").format(name=name))
         self._fill((self.tr("Rule"), self.tr("In force now"), self.tr("In the file")), self._rows(changes))
         self.go.setEnabled(bool(changes))

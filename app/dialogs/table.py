@@ -37,6 +37,7 @@ class TableDialog(FittedDialog):
         self.table = QTableWidget(len(table.rows), len(table.heads))
         self.table.setAccessibleName(table.title)
         self.table.setHorizontalHeaderLabels(list(table.heads))
+        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.copying = TableCopy(self.table)

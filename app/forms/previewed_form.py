@@ -155,7 +155,7 @@ class PreviewedForm(FittedDialog):
         column.addWidget(self._foot())
 
     def _roll_cards(self) -> None:
-        self.stack.setContentsMargins(0, 0, self.theme.px(4), 0)
+        self.stack.setContentsMargins(0, 0, 0, 0)
         self.stack.setSpacing(self.theme.px(8))
         self.roll.setWidgetResizable(True)
         self.roll.setFrameShape(QFrame.Shape.NoFrame)
@@ -189,7 +189,7 @@ class PreviewedForm(FittedDialog):
         row.setContentsMargins(px(14), px(10), px(14), px(12))
         row.setSpacing(px(8))
         row.addLayout(words, 1)
-        for button in (self.leave, self.go):
+        for button in (self.go, self.leave):  # in the order that every other dialog has
             button.setMinimumHeight(px(44))
             row.addWidget(button, 0, Qt.AlignmentFlag.AlignBottom)
         return foot

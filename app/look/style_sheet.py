@@ -97,15 +97,18 @@ QLineEdit:focus, QPlainTextEdit:focus, QTextEdit:focus, QAbstractSpinBox:focus, 
 QLineEdit:disabled, QAbstractSpinBox:disabled, QComboBox:disabled {{
     background: {sunken}; color: {ink_quiet}; border-color: {line};
 }}
+QLineEdit, QPlainTextEdit, QTextEdit {{ placeholder-text-color: {ink_quiet}; }}
 QComboBox::drop-down {{ border: 0; width: {g6}px; }}
+QComboBox::down-arrow {{ image: url("{arrow}"); width: {g4}px; height: {g4}px; }}
 QComboBox QAbstractItemView {{ background: {raised}; border: 1px solid {line}; outline: 0; }}
 
 QCheckBox, QRadioButton {{ spacing: {g2}px; min-height: {target}px; background: transparent;
     border: 2px solid transparent; }}
-QCheckBox::indicator, QListView::indicator, QTreeView::indicator {{
+QCheckBox::indicator, QListView::indicator, QTreeView::indicator, QTableView::indicator {{
     width: {g4}px; height: {g4}px; background: {raised}; border: 1px solid {edge}; border-radius: {g1}px;
 }}
-QCheckBox::indicator:checked, QListView::indicator:checked, QTreeView::indicator:checked {{
+QCheckBox::indicator:checked, QListView::indicator:checked, QTreeView::indicator:checked,
+QTableView::indicator:checked {{
     background: {accent}; border: 1px solid {accent}; image: url("{tick}"); }}
 QSlider:horizontal {{ min-height: {g6}px; }}
 QSlider::groove:horizontal {{ height: {g1}px; background: {line}; border-radius: 2px; }}
@@ -119,19 +122,19 @@ QCheckBox:focus, QRadioButton:focus {{ border: 2px solid {accent}; border-radius
 
 QListView, QTreeView, QTableView {{
     background: {raised}; alternate-background-color: {sunken}; border: 1px solid {line};
-    border-radius: {radius}px; gridline-color: {line}; outline: 0;
+    border-radius: {radius}px; padding: 1px; gridline-color: {line}; outline: 0;
     selection-background-color: {wash}; selection-color: {ink};
 }}
-QListView:focus, QTreeView:focus, QTableView:focus {{ border: 2px solid {accent}; }}
+QListView:focus, QTreeView:focus, QTableView:focus {{ border: 2px solid {accent}; padding: 0px; }}
 QListView::item, QTreeView::item {{ padding: {g2}px; min-height: {target}px; }}
 QTableView::item {{ padding: {g1}px {g2}px; }}
 QListView::item:selected, QTreeView::item:selected, QTableView::item:selected {{
     background: {wash}; color: {ink};
 }}
-QHeaderView {{ background: {raised}; }}
+QHeaderView {{ background: transparent; }}
 QHeaderView::section {{
-    background: {raised}; color: {ink_quiet}; border: 0; border-bottom: 1px solid {line};
-    padding: {g2}px; font-size: {caption}px;
+    background: transparent; color: {ink_quiet}; border: 0; border-bottom: 1px solid {line};
+    padding: {g2}px {g2_3}px; font-size: {caption}px; text-align: left;
 }}
 QTableCornerButton::section {{ background: {raised}; border: 0; }}
 
@@ -180,6 +183,8 @@ QScrollBar::add-page, QScrollBar::sub-page {{ background: transparent; }}
 """
 
 _LOOK = Path(__file__).parent
+_CELL_MARGIN = 3
+"""Pixels that the style puts before the words of a cell, and not before those of its heading."""
 _SURFACES = ("ground", "raised", "sunken", "line", "edge", "wash")
 _INKS = ("ink", "ink_quiet", "accent", "on_accent", "support_edge")
 
@@ -195,8 +200,9 @@ def sheet(theme: Theme) -> str:
     targets = {"target": theme.px(24), "choice": theme.px(20), "menu": theme.px(10)}
     targets |= {"glove_button": theme.px(44) - 2, "glove_field": theme.px(44) - 2 - 2 * theme.px(4)}
     targets |= {"menu_side": theme.px(8), "tab": theme.px(5), "tab_1": theme.px(5) - 1}
-    tick = (_LOOK / f"tick-{'dark' if theme.dark else 'light'}.svg").as_posix()
-    return _SHEET.format(radius=8, bar=3, tick=tick, **targets, **distances, **inner, **sizes, **colours)
+    drawn = {n: (_LOOK / f"{n}-{'dark' if theme.dark else 'light'}.svg").as_posix() for n in ("tick", "arrow")}
+    targets["g2_3"] = theme.px(8) + _CELL_MARGIN
+    return _SHEET.format(radius=8, bar=3, **drawn, **targets, **distances, **inner, **sizes, **colours)
 
 
 def palette_of(theme: Theme) -> QPalette:

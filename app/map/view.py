@@ -62,7 +62,7 @@ class MapView(QWidget):
         self.table.verticalHeader().hide()
         self.table.setWordWrap(True)
         self.table.setShowGrid(False)
-        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self._lay_out()
         self.map.gas_chosen.connect(self._chosen)
         self.map.gas_activated.connect(self._activated)

@@ -5,9 +5,20 @@ from itertools import combinations
 
 import numpy as np
 import pytest
-from PySide6.QtCore import QRectF
+from PySide6.QtCore import QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QImage, QPainter
-from PySide6.QtWidgets import QCheckBox, QComboBox, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QApplication,
+    QCheckBox,
+    QComboBox,
+    QLabel,
+    QLineEdit,
+    QPushButton,
+    QTableWidget,
+    QTableWidgetItem,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.chart.marks import gas_mark, pennant, spot, verdict_sign
 from app.chart.shapes import Look
@@ -204,3 +215,42 @@ def test_the_sheet_dresses_widgets_and_shows_focus(qapp, qtbot, theme):
 def test_figures_are_equally_wide(qapp):
     metrics = QFontMetricsF(THEMES["light"].font(14))
     assert len({round(metrics.horizontalAdvance(figure), 3) for figure in "0123456789"}) == 1
+
+
+@BOTH
+def test_what_a_field_waits_for_can_be_read(qtbot, theme):
+    """The words in an empty field are words: Qt alone would thin them out to half their contrast."""
+    apply_theme(QApplication.instance(), theme)
+    field = QLineEdit()
+    field.setPlaceholderText("MMMMMM 8 characters or more")
+    other = QPushButton("x")
+    for widget in (field, other):
+        qtbot.addWidget(widget)
+    field.resize(300, 40)
+    field.show()
+    image = field.grab().toImage()
+    inner = image.copy(14, 6, 270, 28)
+    ground = theme.colours.raised
+    seen = {inner.pixelColor(x, y).name() for x in range(inner.width()) for y in range(inner.height())}
+    assert max(contrast(colour, ground) for colour in seen) >= LEAST_TEXT_CONTRAST
+
+
+@BOTH
+def test_a_field_that_offers_choices_shows_so_and_a_row_can_be_ticked(qtbot, theme):
+    """An arrow in every combo box; the box before a row of a table is seen on its ground."""
+    apply_theme(QApplication.instance(), theme)
+    choices, table = QComboBox(), QTableWidget(1, 1)
+    choices.addItem("")
+    cell = QTableWidgetItem("")
+    cell.setCheckState(Qt.CheckState.Unchecked)
+    table.setItem(0, 0, cell)
+    table.horizontalHeader().hide()
+    table.verticalHeader().hide()
+    table.setShowGrid(False)
+    for widget, left in ((choices, 160), (table, 0)):
+        qtbot.addWidget(widget)
+        widget.resize(200, 60)
+        widget.show()
+        image = widget.grab().toImage().copy(left + 5, 5, 30, 50)
+        colours = {image.pixelColor(x, y).name() for x in range(image.width()) for y in range(image.height())}
+        assert max(contrast(c, theme.colours.raised) for c in colours) >= LEAST_MARK_CONTRAST
