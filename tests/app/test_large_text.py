@@ -100,7 +100,7 @@ def test_large_text_leaves_room_for_two_lanes(qtbot, tmp_path):
 
 
 @pytest.mark.parametrize(("scale", "width", "one_line"), [(1.0, 1280, True), (1.0, 1920, True), (1.5, 1920, True),
-                                                          (2.0, 1280, False)])  # fmt: skip
+                                                          (2.0, 1300, False)])  # fmt: skip
 def test_the_line_on_top_stands_beside_the_menus_where_it_fits(qtbot, tmp_path, scale, width, one_line):
     preferences = Preferences(text_scale=scale, cautions_seen=True)
     with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
@@ -114,3 +114,14 @@ def test_the_line_on_top_stands_beside_the_menus_where_it_fits(qtbot, tmp_path, 
         if one_line:
             assert last.right() <= window.top.x()
             assert window.top.x() + window.top.width() <= width
+        else:
+            assert window.top.height() < 2 * window.top.pages.height()  # its pages alone: one row, not two
+            assert last.right() <= window.top.who.x()
+        assert window.top.moment.isVisible()
+        assert window.top.person.isVisible()
+        assert "28-Mar-2026 05:30" in window.top.moment.accessibleName()
+        window.resize(2600, 800)  # and back beside the menus
+        qtbot.wait(20)
+        assert bar.cornerWidget() is window.top
+        assert window.top.has_who
+        assert window.top.moment.text().endswith("28-Mar-2026 05:30")
