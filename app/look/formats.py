@@ -18,6 +18,7 @@ from core.record.local_time import candidates, local
 from core.record.units import MMHG_PER_KPA, written
 
 MINUS = "\N{MINUS SIGN}"
+PLUS_MINUS = "\N{PLUS-MINUS SIGN}"
 NO_BREAK = "\N{NO-BREAK SPACE}"
 ABSENT = "not recorded"
 MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
@@ -139,16 +140,19 @@ def hours(count: float) -> str:
 
 
 def gas_pressure(mmhg: float, unit: str = "mmHg", *, sign: bool = False) -> str:
-    """A gas pressure in the reader's unit.
+    """A gas pressure in the reader's unit; `sign`: a difference, which reads as none where it is zero.
 
     >>> gas_pressure(60, "kPa"), gas_pressure(59.6), gas_pressure(-4.5, sign=True)
     ('8.0 kPa', '60 mmHg', '−5 mmHg')
+    >>> gas_pressure(0.2, sign=True)
+    '±0 mmHg'
     """
     if unit not in GAS_UNITS:
         raise ValueError(f"gas pressure unit {unit!r}: mmHg or kPa is accepted")
     value = mmhg / MMHG_PER_KPA if unit == "kPa" else mmhg
     text = (signed if sign else fixed)(value, _GAS_DECIMALS[unit])
-    return f"{text} {unit}"
+    is_none = sign and not rounded(value, _GAS_DECIMALS[unit])  # "P/F 0 mmHg" would be a value nobody lives with
+    return f"{PLUS_MINUS}{text} {unit}" if is_none else f"{text} {unit}"
 
 
 def fraction(value: float) -> str:
@@ -316,4 +320,4 @@ def whole_units(text: str) -> str:
 
 def plain(text: str) -> str:
     """Text for pasting where only the plainest signs are safe: minus as hyphen, no hard spaces or joiners."""
-    return text.replace(MINUS, "-").replace(NO_BREAK, " ").replace("\N{WORD JOINER}", "")
+    return text.replace(MINUS, "-").replace(PLUS_MINUS, "+-").replace(NO_BREAK, " ").replace("\N{WORD JOINER}", "")

@@ -21,6 +21,7 @@ from app.sheet.writer import (
 )
 from app.telling.headline import headline
 from app.telling.language import in_language as tr
+from app.telling.presumed import silent_word
 from app.ward.ordering import GAS
 from app.words import sentence
 from core.figures.shift import ShiftFigures
@@ -94,7 +95,9 @@ class WardWriter(SheetWriter):
             pressure = f" {formats.trimmed(s.epap_cmH2O)} cmH2O"
         support = s.pressure_support_cmH2O if s.ipap_cmH2O is not None else None
         more = f" (PS {formats.trimmed(support)})" if support is not None else ""
-        return f"{s.mode or 'mode not recorded'}{pressure}{more}, {self._lines.oxygen(s)}"
+        told = f"{s.mode or 'mode not recorded'}{pressure}{more}, {self._lines.oxygen(s)}"
+        silence = silent_word(s, self._reader.zone)
+        return f"{told}; {silence}" if silence else told
 
     def _change_of_state(self, s: ShiftFigures) -> str:
         before, after = s.state_before, s.state_after

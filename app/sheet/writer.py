@@ -9,6 +9,7 @@ from app.look import formats
 from app.operations.handover import Handover
 from app.telling.certainty import starred
 from app.telling.finding_names import marker_name
+from app.telling.gas_doubt import rests_on_doubt
 from app.telling.headline import ever_acidotic
 from app.telling.language import in_language as tr
 from app.words import Reader
@@ -55,9 +56,9 @@ class SheetWriter:
             at = tr(" at {moment}").format(moment=self._moment(f.now.pf_at)) if dated and f.now.pf_at else ""
             state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}{at}; {lowered(state)}", ""
         off = tr(", last gas drawn off support") if last.off_support else ""
-        return (
-            f"{state}{off}: pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
-        )
+        values = f"pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
+        doubt = tr("Doubtful gas. ") if rests_on_doubt(last) else ""
+        return f"{doubt}{state}{off}: {values}"
 
     def _support_now(self, f: EpisodeFigures) -> str:
         s = f.support

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -289,3 +290,30 @@ def test_as_known_at_a_moment_leaves_out_what_was_recorded_later(tmp_path: Path)
     assert then.episodes == () or not then.episodes[0].gases
     assert known.episodes[0].gases
     assert "as known at" in then.printed
+
+
+def test_a_state_that_rests_on_a_doubtful_gas_says_so_on_both_pages(tmp_path: Path) -> None:
+    lines = (
+        "23:40 ph 7.26 paco2 68 pao2 58 gas_fio2 28%",
+        "00:00 bpap-st 14/5 28",
+        "01:05 ph 7.45 paco2 120 pao2 60",
+    )
+    content, page = one(tmp_path, *lines)
+    assert content.ward.rows[0].state.startswith("Doubtful gas. ")
+    assert page.standing.startswith("Doubtful gas. ")
+    (tmp_path / "sure").mkdir()
+    assert not one(tmp_path / "sure", *lines[:2])[1].standing.startswith("Doubtful")
+
+
+def test_the_wards_page_names_an_episode_of_which_nothing_was_logged_for_long(night: Handover) -> None:
+    first, *others = night.shift.episodes
+    support = replace(first.now.support, silent_since=night.shift.end - 13 * HOUR)
+    silent = replace(first, now=replace(first.now, support=support))
+    shift = replace(night.shift, episodes=(silent, *others))
+    made = sheet_content(replace(night, shift=shift), Reader(demo.ZONE))
+    assert "; nothing logged since 27-Mar-2026 16:30" in made.ward.rows[0].support
+    assert not any("nothing logged" in row.support for row in made.ward.rows[1:])
+
+
+def test_a_difference_of_nothing_is_no_value(content: SheetContent) -> None:
+    assert "P/F 0 mmHg" not in handover_text(content)
