@@ -30,6 +30,9 @@ TEMPLATES: Final[dict[str, str]] = {
         "The mask is off already, since {since:time}. Was it on in between?",
     "doubt.mask_on_already":
         "The mask is on already[[, since {since:time}]]. Was it off in between?",
+    "doubt.mask_both_ways":
+        "The mask {logged:pick on=going on;off=coming off} stands at this minute too ({at:time}): it counts as "
+        "{last:pick on=on;off=off} from then. Was that the last?",
     "doubt.salvaged": "It was saved from a damaged file, where nothing proves that it was not changed.",
     "doubt.second_value":
         "[[{channel:name} {first:of} is logged for this minute already ({at:time}). ]]Two values of one moment: "

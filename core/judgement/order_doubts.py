@@ -30,6 +30,7 @@ def order_doubts(readings: Sequence[Reading], at: Instant, record: Episode) -> t
     return (
         *_settings_unworn(readings, keys, at, support),
         *_moved_twice(keys, at, support),
+        *_contrary_of_the_minute(readings, at, record),
         *_after_the_end(readings, keys, at, support),
         *_gas_at_mask_off(keys, at, record),
         *_gas_at_change(readings, keys, at, record, settings),
@@ -61,6 +62,26 @@ def _moved_twice(keys: Collection[str], at: Instant, support: SupportTime) -> tu
         on = max((b.end for b in support.breaks if b.end is not None and b.end <= at), default=support.start)
         return (Message("doubt.mask_on_already", {"since": on}),)
     return ()
+
+
+def _contrary_of_the_minute(readings: Sequence[Reading], at: Instant, record: Episode) -> tuple[Message, ...]:
+    """The mask put on and taken off in one minute, where the times do not say which came last.
+
+    At one instant what is recorded last counts; before an instant of the same minute this counts as the earlier,
+    though it is recorded later. Either is said before it is recorded.
+    """
+    now = [r.channel.key in OFF for r in readings if r.channel.key in (*OFF, *ON)]
+    if not now:
+        return ()
+    off = now[-1]
+    contrary = [int(t) for k in (ON if off else OFF) for t in record.text(k).t
+                if int(t) >= at and int(t) // MINUTE == at // MINUTE]  # fmt: skip
+    if not contrary and (not off) not in now:
+        return ()
+    then = max(contrary, default=at)
+    last = off if then == at else not off
+    said = {"logged": "on" if off else "off", "at": then, "last": "off" if last else "on"}
+    return (Message("doubt.mask_both_ways", said),)
 
 
 def _after_the_end(

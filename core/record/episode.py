@@ -132,6 +132,17 @@ class Episode:
         words = self.text(channel)
         return words.v[-1] if len(words) else None
 
+    def place(self, origin: int) -> int:
+        """The place of an entry among those of its instant, in order of recording; a machine's samples come first."""
+        return self.standing[origin].place if origin != DEVICE else 0
+
+    def said_later(self, origin: int, before: int) -> bool:
+        """Whether an entry was recorded after another and apart from it, not in one line or file with it."""
+        if DEVICE in (origin, before):
+            return False
+        this, other = self.standing[origin], self.standing[before]
+        return this.place > other.place and this.placed_at > other.placed_at
+
     @property
     def label(self) -> str:
         """What the ward calls this episode; its key where no label was given."""

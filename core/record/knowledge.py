@@ -26,13 +26,17 @@ REPLACING_ACTIONS = frozenset({Action.CORRECT, Action.WITHDRAW, Action.MOVE})
 class Standing:
     """An entry that counts, with what is known of its past.
 
-    `first` is the id of the entry the chain began with (the same id while it is uncorrected).
+    `first` is the id of the entry the chain began with (the same id while it is uncorrected). `place` orders what
+    happened at one instant: the sequence by which the value was first put at its time, at `placed_at`. A corrected
+    value keeps the place of what it corrects; a corrected time is a new place.
     """
 
     entry: Entry
     first: str
     corrected: bool = False
     disputed: bool = False
+    place: int = 0
+    placed_at: Instant = 0
 
 
 def head_known_at(entries: Sequence[Entry], known_at: Instant) -> int:
@@ -66,18 +70,20 @@ def standing(entries: Iterable[Entry], head: int | None = None) -> tuple[Standin
             if end is not None:
                 out.append(end)
         elif e.action not in REPLACING_ACTIONS:
-            out.append(Standing(e, e.id))
+            out.append(Standing(e, e.id, place=e.seq, placed_at=e.recorded_at))
     out.sort(key=lambda s: (s.entry.at, s.entry.seq))
     return tuple(out)
 
 
 def _end_of_chain(first: Entry, successors: dict[str, list[Entry]]) -> Standing | None:
     """Follow the replacements of an entry to the one that counts, or None when it was withdrawn."""
-    current, disputed, corrected = first, False, False
+    current, placed, disputed, corrected = first, first, False, False
     while followers := successors.get(current.id):
         disputed = disputed or len(followers) > 1
-        current = followers[-1]
+        before, current = current, followers[-1]
+        if (current.at, current.episode) != (before.at, before.episode):
+            placed = current
         corrected = True
     if current.action is Action.WITHDRAW:
         return None
-    return Standing(current, first.id, corrected, disputed)
+    return Standing(current, first.id, corrected, disputed, placed.seq, placed.recorded_at)

@@ -6,6 +6,7 @@ on flow, leak and ventilation. A flow of 0 is room air: the machine draws it fro
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
 from math import isnan, nan
@@ -18,6 +19,9 @@ from core.record.instant import MINUTE, Instant
 from core.record.samples import Times, Values
 
 ROOM_AIR = 0.21
+SETTING_NUMBERS = ("ipap", "epap", "cpap", "fio2", "o2_flow", "rate_set", "ti")
+SETTING_WORDS = ("mode", "interface")
+"""The channels whose values are in force from when they were logged until the next."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,30 +108,33 @@ class SettingsInForce:
 
     @cached_property
     def fio2(self) -> Steps:
-        """The known FiO2 as a fraction: NaN from an oxygen flow without an FiO2 of the same moment."""
-        fio2, flow = self.episode.number("fio2"), self.episode.number("o2_flow")
-        known = {int(t): float(v) for t, v in zip(fio2.t, fio2.v, strict=True)}
-        for t, v in zip(flow.t, flow.v, strict=True):
-            known.setdefault(int(t), ROOM_AIR if v == 0 else nan)
-        moments = sorted(known)
-        return Steps(np.array(moments, np.int64), np.array([known[t] for t in moments], np.float64))
+        """The known FiO2 as a fraction: NaN from an oxygen flow without an FiO2 of the same moment.
+
+        An FiO2 and a flow of one moment belong together, unless the flow was recorded later by itself.
+        """
+        return self._oxygen("fio2", "o2_flow", lambda flow: ROOM_AIR if flow == 0 else nan)
 
     @cached_property
     def o2_flow(self) -> Steps:
         """The oxygen flow in L/min: NaN once an FiO2 alone was logged."""
-        fio2, flow = self.episode.number("fio2"), self.episode.number("o2_flow")
-        flows = {int(t): float(v) for t, v in zip(flow.t, flow.v, strict=True)}
-        for t in fio2.t:
-            flows.setdefault(int(t), nan)
-        moments = sorted(flows)
-        return Steps(np.array(moments, np.int64), np.array([flows[t] for t in moments], np.float64))
+        return self._oxygen("o2_flow", "fio2", lambda _fio2: nan)
+
+    def _oxygen(self, channel: str, other: str, meaning: Callable[[float], float]) -> Steps:
+        """One of the two ways to say oxygen; `meaning` of a value of the other, where that stands alone."""
+        own, others = self.episode.number(channel), self.episode.number(other)
+        known = dict(zip(own.t.tolist(), own.v.tolist(), strict=True))
+        origins = dict(zip(own.t.tolist(), own.origin.tolist(), strict=True))
+        for t, v, origin in zip(others.t.tolist(), others.v.tolist(), others.origin.tolist(), strict=True):
+            if t not in origins or self.episode.said_later(origin, origins[t]):
+                known[t] = meaning(v)
+        moments = sorted(known)
+        return Steps(np.array(moments, np.int64), np.array([known[t] for t in moments], np.float64))
 
     @cached_property
     def moments(self) -> tuple[Instant, ...]:
         """Every moment at which a setting was logged, in order."""
-        numeric = ("ipap", "epap", "cpap", "fio2", "o2_flow", "rate_set", "ti")
-        found = {int(t) for c in numeric for t in self.episode.number(c).t}
-        found |= {int(t) for c in ("mode", "interface") for t in self.episode.text(c).t}
+        found = {int(t) for c in SETTING_NUMBERS for t in self.episode.number(c).t}
+        found |= {int(t) for c in SETTING_WORDS for t in self.episode.text(c).t}
         return tuple(sorted(found))
 
     @cached_property

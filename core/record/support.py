@@ -1,13 +1,18 @@
-"""When support ran: its start and end, breaks from it, hours on the mask."""
+"""When support ran: its start and end, breaks from it, hours on the mask.
+
+What happened at one instant acts in the order in which it was recorded, so that of two contrary entries the later
+wins: a break of no length is no break, and a mask that was on for no time was not on.
+"""
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 from core.record.channels import MODES, Group, by_group
-from core.record.episode import Episode
+from core.record.episode import Episode, Series, Words
 from core.record.instant import DAY, HOUR, MINUTE, Instant
-from core.record.settings import SettingsInForce
+from core.record.settings import SETTING_NUMBERS, SETTING_WORDS, SettingsInForce
 
 SUPPORT_MODES = frozenset(MODES) - {"off"}
 SETTLED = 10 * MINUTE
@@ -17,6 +22,8 @@ ENDING = frozenset({"ended_at", *_ENDING_EVENTS})
 """Channels by which support ends."""
 BEARS_ON_THE_END = ENDING | {"mask_on"} | {c.key for c in by_group(Group.SETTING)}
 """Channels that decide whether it has: settings or the mask after a stop say that it goes on."""
+Moment = tuple[Instant, int]
+"""An instant, and the place in the order of recording of what happened at it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -133,35 +140,53 @@ def _seen_to_begin(episode: Episode, first: Instant | None) -> bool:
 
 def _end(episode: Episode, settings: SettingsInForce) -> tuple[Instant | None, str | None]:
     stated = episode.latest("ended_at")
-    ends = [(int(stated), "ended_at")] if stated is not None else []
-    ends += [(int(episode.text(e).t[-1]), e) for e in _ENDING_EVENTS if len(episode.text(e))]
+    ends = [((int(stated), 0), "ended_at")] if stated is not None else []
+    ends += [(max(moments_of(episode, e)), e) for e in _ENDING_EVENTS if len(episode.text(e))]
     if not ends:
         return None, None
-    end, by = max(ends)
-    on = episode.text("mask_on")
-    resumed = any(t > end for t in settings.moments if not settings.at(t).is_off)
-    resumed = resumed or bool(len(on) and on.t[-1] > end)
-    return (None, None) if resumed and by != "ended_at" else (end, by)
+    last, by = max(ends)
+    goes_on = by != "ended_at" and any(m > last for m in resumptions_of(episode, settings))
+    return (None, None) if goes_on else (last[0], by)
 
 
-def _mode_moves(episode: Episode) -> list[tuple[Instant, bool]]:
+def moments_of(episode: Episode, channel: str) -> list[Moment]:
+    """When entries of a channel of words happened, each with its place in the order of recording."""
+    words = episode.text(channel)
+    return [(t, episode.place(i)) for t, i in zip(words.t.tolist(), words.origin.tolist(), strict=True)]
+
+
+def resumptions_of(episode: Episode, settings: SettingsInForce) -> Iterator[Moment]:
+    """Every moment that says support goes on after an end before it: the mask on, a setting that is not `off`."""
+    yield from moments_of(episode, "mask_on")
+    logged: list[Series | Words] = [episode.number(c) for c in SETTING_NUMBERS]
+    logged += [episode.text(c) for c in SETTING_WORDS]
+    for values in logged:
+        for t, i in zip(values.t.tolist(), values.origin.tolist(), strict=True):
+            if not settings.at(t).is_off:
+                yield t, episode.place(i)
+
+
+def _mode_moves(episode: Episode) -> list[tuple[Moment, bool]]:
     """Switching off is going off; only a mode after `off` is coming on (one logged in a break is a plan)."""
-    mode = episode.text("mode")
-    before = (None, *mode.v)
-    return [(int(t), v == "off") for t, v, was in zip(mode.t, mode.v, before, strict=False)
+    moments, modes = moments_of(episode, "mode"), episode.text("mode").v
+    return [(m, v == "off") for m, v, was in zip(moments, modes, (None, *modes), strict=False)
             if (v == "off") != (was == "off")]  # fmt: skip
+
+
+def _moves(episode: Episode) -> list[tuple[Moment, bool]]:
+    """Every going-off (True) and coming-on, in the order in which they act."""
+    moves: list[tuple[Moment, bool]] = []
+    for channel, off in (("break_start", True), ("mask_off", True), ("stopped", True),
+                         ("break_end", False), ("mask_on", False)):  # fmt: skip
+        moves += [(m, off) for m in moments_of(episode, channel)]
+    return sorted(moves + _mode_moves(episode))
 
 
 def _breaks(episode: Episode, end: Instant | None) -> tuple[Break, ...]:
     """Pair every going-off with the next coming-on. Off while off changes nothing."""
-    moves: list[tuple[Instant, bool]] = []
-    for channel, off in (("break_start", True), ("mask_off", True), ("stopped", True),
-                         ("break_end", False), ("mask_on", False)):  # fmt: skip
-        moves += [(int(t), off) for t in episode.text(channel).t]
-    moves += _mode_moves(episode)
     breaks: list[Break] = []
     opened: Instant | None = None
-    for at, off in sorted(moves):
+    for (at, _), off in _moves(episode):
         if end is not None and at >= end:
             break
         if off and opened is None:
@@ -171,4 +196,15 @@ def _breaks(episode: Episode, end: Instant | None) -> tuple[Break, ...]:
             opened = None
     if opened is not None:
         breaks.append(Break(opened, end))
-    return tuple(breaks)
+    return _of_some_length(breaks)
+
+
+def _of_some_length(breaks: list[Break]) -> tuple[Break, ...]:
+    """Breaks that touch are one, since the mask was on in between for no time; one of no length is none."""
+    joined: list[Break] = []
+    for b in (b for b in breaks if b.end is None or b.end > b.start):
+        if joined and joined[-1].end == b.start:
+            joined[-1] = Break(joined[-1].start, b.end)
+        else:
+            joined.append(b)
+    return tuple(joined)

@@ -1,9 +1,12 @@
 """Logging one line by the command line, as it is typed in the window."""
 
+import json
+from pathlib import Path
+
 import pytest
 
 from app.cli import DONE, REFUSED
-from tests.support.command_line import Run
+from tests.support.command_line import HEADER, Run
 
 
 def test_log_says_what_it_recorded_with_units_and_support(filled: Run) -> None:
@@ -43,3 +46,26 @@ def test_the_login_name_is_said_once_where_nobody_is_named(filled: Run) -> None:
     assert err.count("(login name)") == 1
     assert "login name" not in filled("log", "N4", "rr 21", "--by", "AB", "--yes")[2]
     assert "login name" not in filled("figures", "N4")[2]
+
+
+def test_a_mask_off_and_on_in_one_minute_leaves_it_on(filled: Run) -> None:
+    at = ("--at", "2026-03-27T20:40Z")
+    assert filled("log", "N4", "mask off", *at)[0] == DONE
+    code, _, err = filled("log", "N4", "mask on", *at)
+    assert code == REFUSED
+    assert "counts as on" in err
+    assert filled("log", "N4", "mask on", *at, "--yes")[0] == DONE
+    told = json.loads(filled("figures", "N4", "--as-of", "2026-03-27T22:00Z", "--json")[1])["episodes"][0]
+    assert told["support"]["on_mask"]
+    assert [g["off_support"] for g in told["gases"]] == [False, False]
+
+
+@pytest.mark.parametrize(("rows", "on"), [(("mask_off", "mask_on"), True), (("mask_on", "mask_off"), False)])
+def test_rows_of_one_minute_in_a_file_act_in_the_order_of_the_file(
+    filled: Run, tmp_path: Path, rows: tuple[str, str], on: bool
+) -> None:
+    log = tmp_path / "more.csv"
+    log.write_text(HEADER + "".join(f"N4,2026-03-27T21:30:00+00:00,{r},,,AB,\n" for r in rows))
+    assert filled("intake", log)[0] == DONE
+    told = json.loads(filled("figures", "N4", "--as-of", "2026-03-27T22:00Z", "--json")[1])["episodes"][0]
+    assert told["support"]["on_mask"] is on

@@ -1,13 +1,16 @@
 """Settings in force, and the oxygen that is known."""
 
-from math import isnan
+from dataclasses import replace
+from math import isnan, nan
 
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from core.record.episode import build_episode
+from core.record.knowledge import standing
 from core.record.settings import SettingsInForce
-from tests.support.log import episode, moment
+from tests.support.log import entries, episode, moment
 
 
 def in_force(log, at):
@@ -66,3 +69,27 @@ def test_the_step_function_equals_a_walk_through_the_log(changes):
         expected = [v for m, v in changes if m <= minute]
         got = steps.at(moment(f"{minute // 60:02d}:{minute % 60:02d}"))
         assert (isnan(got) and not expected) or got == expected[-1]
+
+
+@pytest.mark.parametrize(
+    ("first", "second", "fio2", "flow"),
+    [
+        ("fio2 40", "flow 4", nan, 4),
+        ("flow 4", "fio2 40", 0.4, nan),
+        ("fio2 40", "flow 0", 0.21, 0),
+        ("fio2 40", "fio2 50", 0.5, nan),
+    ],
+)
+def test_of_oxygen_said_twice_for_one_moment_the_later_recorded_counts(first, second, fio2, flow):
+    log = entries(f"02:00 {first}\n02:00 {second}")
+    later = [*log[:-1], replace(log[-1], recorded_at=moment("02:01"))]
+    now = SettingsInForce(build_episode("E1", standing(later))).at(moment("02:00"))
+    assert (now.fio2, now.o2_flow) == pytest.approx((fio2, flow), nan_ok=True)
+
+
+@pytest.mark.parametrize(
+    "log", ["02:00 fio2 40\n02:00 flow 4", "02:00 flow 4\n02:00 fio2 40", "02:00 fio2 40 flow 4"]
+)
+def test_an_fio2_and_a_flow_of_one_recording_belong_together(log):
+    now = in_force(log, "02:00")
+    assert (now.fio2, now.o2_flow) == pytest.approx((0.4, 4))

@@ -1,11 +1,16 @@
 """When support ran: start, end, breaks and hours on the mask."""
 
+from dataclasses import fields, replace
+
 import pytest
 
+from core.record.entries import Action, NewEntry, recorded
+from core.record.episode import build_episode
 from core.record.instant import HOUR
+from core.record.knowledge import standing
 from core.record.settings import SettingsInForce
 from core.record.support import support_time
-from tests.support.log import device, episode, moment
+from tests.support.log import device, entries, episode, moment
 
 
 def found(log):
@@ -87,3 +92,66 @@ def test_hours_of_the_last_day_are_those_of_the_last_day():
     s = found("01:00 mode bpap-st ipap 14 epap 5\n01:10 started at 2026-03-26T01:00:00+00:00")
     assert s.hours_last_day(moment("05:00")) == pytest.approx(24.0)
     assert s.hours_on_mask(moment("05:00"), moment("05:00") - HOUR) == 0.0
+
+
+@pytest.mark.parametrize(
+    ("log", "off"),
+    [
+        ("02:00 mask off\n02:00 mask on", False),
+        ("02:00 mask on\n02:00 mask off", True),
+        ("02:00 mask off\n02:00 mask on\n02:00 mask off", True),
+        ("02:00 break start\n02:00 break end", False),
+        ("02:00 mode off\n02:00 mode bpap-st", False),
+        ("02:00 mode bpap-st\n02:00 mode off", True),
+        ("02:00 mode off\n02:00 mask on", False),
+        ("02:00 mask on\n02:00 mode off", True),
+        ("02:00 mask off mask on", False),
+        ("02:00 mask on mask off", True),
+        ("02:00 stopped\n02:00 mask on", False),
+        ("02:00 mask on\n02:00 stopped", True),
+    ],
+)
+def test_of_contrary_entries_of_one_instant_the_later_recorded_wins(log, off):
+    s = found(START + log)
+    assert s.on_support(moment("02:01")) is not off
+    assert [b.start for b in s.off_times] == ([moment("02:00")] if off else [])
+
+
+@pytest.mark.parametrize(
+    ("log", "ended"),
+    [
+        ("02:00 stopped", True),
+        ("02:00 stopped\n02:00 mask on", False),
+        ("02:00 stopped\n02:00 ipap 16 epap 6", False),
+        ("02:00 ipap 16 epap 6\n02:00 stopped", True),
+        ("02:00 stopped\n02:00 mode off", True),
+        ("02:00 mode off\n02:00 stopped", True),
+        ("02:00 interface oronasal\n02:00 intubated", True),
+    ],
+)
+def test_support_that_stopped_and_went_on_in_one_instant_goes_by_the_later(log, ended):
+    assert (found(START + log).end is not None) is ended
+
+
+def test_a_mask_that_was_on_for_no_time_parts_no_break():
+    s = found(START + "02:00 mask off\n02:30 mask on\n02:30 mask off\n03:00 mask on")
+    assert [(b.start, b.end) for b in s.breaks] == [(moment("02:00"), moment("03:00"))]
+
+
+def test_a_corrected_value_keeps_its_place_and_a_corrected_time_is_a_new_one():
+    log = entries(START + "02:00 ipap 16\n02:00 stopped\n02:20 mask on")
+    ipap, mask = next(e for e in log if e.number == 16), log[-1]
+    right = recorded(replace(_new(ipap), number=15.0), 90, "90", moment("03:00"))
+    assert support_of([*log[:-1], right]).end == moment("02:00")  # the stop was recorded after that setting
+    earlier = recorded(replace(_new(mask), at=moment("02:00")), 91, "91", moment("03:00"))
+    assert support_of([*log, earlier]).end is None  # the last word on the mask
+
+
+def _new(e):
+    names = [f.name for f in fields(NewEntry)]
+    return replace(NewEntry(**{n: getattr(e, n) for n in names}), action=Action.CORRECT, replaces=e.id)
+
+
+def support_of(log):
+    e = build_episode("E1", standing(log))
+    return support_time(e, SettingsInForce(e))
