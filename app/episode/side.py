@@ -37,7 +37,7 @@ from app.telling.headline import (
     pf_word,
     sign_of,
 )
-from app.telling.lever_words import lever_reasons, lever_sentence, lever_standing
+from app.telling.lever_words import asks, lever_reasons, lever_sentence, lever_standing
 from app.telling.phrases import gas_words, state_of, support_now, translate
 from app.telling.presumed import presumed_word, silent_word
 from app.ward.lane_words import anchor_name, open_flags
@@ -332,10 +332,11 @@ class _Facts:
             )
 
     def _levers(self) -> Iterator[Fact]:
-        for lever in (x for x in self.f.levers if x.can_act):
-            lines = lever_reasons(lever, self.reader)
-            yield Fact(self.theme, lever_name(lever.key, self.reader), lines, explanation=self.explainer.lever(lever))
-        idle = [x for x in self.f.levers if not x.can_act]
+        for lever in (x for x in self.f.levers if asks(x)):
+            lines, name = lever_reasons(lever, self.reader), lever_name(lever.key, self.reader)
+            title = name if lever.can_act else f"{name}: {lever_standing(lever, self.reader)}"
+            yield Fact(self.theme, title, lines, explanation=self.explainer.lever(lever), quiet=not lever.can_act)
+        idle = [x for x in self.f.levers if not asks(x)]
         if idle:
             folded = [
                 f"{lever_name(x.key, self.reader)}: {lever_standing(x, self.reader)}. "

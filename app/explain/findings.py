@@ -19,7 +19,7 @@ from app.policy.words import limits_words
 from app.telling.finding_names import due_name, lever_name, marker_name
 from app.telling.flag_spans import with_gaps
 from app.telling.headline import lost_gain, verdict_with_loss
-from app.telling.lever_words import lever_sentence, lever_standing, without_decides
+from app.telling.lever_words import lever_sentence, lever_standing, lever_why, without_decides
 from app.telling.phrases import gas_name, gas_words
 from app.words import Reader, sentence
 from core.judgement.gas_reading import read
@@ -181,7 +181,7 @@ class Explainer:
     def lever(self, lever: LeverFigure) -> Explanation:
         """A lever: why it could act or not, and what limits it."""
         present = (lever.present,) if lever.present is not None else ()
-        texts = (*lever.why, *present, *without_decides(lever.limits))
+        texts = (*lever_why(lever), *present, *without_decides(lever.limits))
         note = translate("explain", "A qualified person decides.")
         return Explanation(
             lever_name(lever.key, self.reader), tuple(lever_sentence(m, self.reader) for m in texts), (), (note,)
@@ -191,7 +191,7 @@ class Explainer:
         """Levers that could not act now, each with its reason: no need seen, not known, or no effect."""
         told = []
         for lever in levers:
-            why = " ".join(lever_sentence(m, self.reader) for m in lever.why)
+            why = " ".join(lever_sentence(m, self.reader) for m in lever_why(lever))
             told.append(f"{lever_name(lever.key, self.reader)}: {lever_standing(lever, self.reader)}. {why}")
         note = translate("explain", "A qualified person decides.")
         title = translate("explain", "Levers with no need seen, not known or without effect")

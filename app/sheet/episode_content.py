@@ -14,7 +14,7 @@ from app.telling.certainty import starred
 from app.telling.finding_names import lever_name, marker_name
 from app.telling.language import in_language as tr
 from app.telling.later_words import later_sentence
-from app.telling.lever_words import lever_reasons
+from app.telling.lever_words import asks, lever_reasons
 from app.words import sentence
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
@@ -58,10 +58,12 @@ class EpisodeWriter(SheetWriter):
             yield name, str(f.profile.get(channel) or tr(formats.ABSENT))
 
     def _levers(self, f: EpisodeFigures) -> Iterator[str]:
-        """What could act: the reason, then what limits it."""
+        """What could act: the reason, then what limits it; then those that an open flag is about, by name."""
         for lever in (x for x in f.levers if x.can_act):
             why = " ".join(lever_reasons(lever, self._reader))
             yield f"{opened(lever_name(lever.key, self._reader))}: {why}"
+        if asked := [lever_name(x.key, self._reader) for x in f.levers if asks(x) and not x.can_act]:
+            yield tr("To be judged, a flag is open about them: {levers}.").format(levers="; ".join(asked))
 
     @staticmethod
     def _chart_end(s: ShiftFigures) -> int:

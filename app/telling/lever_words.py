@@ -12,6 +12,9 @@ from core.record.message import Message
 
 DECIDES: Final = "lever.qualified_person_decides"
 """Stands with every lever; a page says it once."""
+_NAMED: Final = 2
+"""So many open flags a lever names; the others stand among the flags."""
+_ENOUGH: Final = "lever.oxygen_enough"
 _NO_NEED: Final = frozenset({
     "lever.leak_within_limit", "lever.mask_time_enough", "lever.no_acidosis", "lever.nothing_logged",
     "lever.oxygen_enough", "lever.spo2_in_range",
@@ -42,7 +45,7 @@ def lever_standing(lever: LeverFigure, reader: Reader) -> str:
     if lever.can_act:
         return reader.translate("can act")
     if first in _NO_NEED:
-        return reader.translate("no need seen in what was logged")
+        return reader.translate("to be judged: a flag is open" if lever.flags else "no need seen in what was logged")
     if first in _NOT_KNOWN:
         return reader.translate("not known")
     if any(m.key in _AT_LIMIT for m in lever.limits):
@@ -52,6 +55,27 @@ def lever_standing(lever: LeverFigure, reader: Reader) -> str:
     return reader.translate("no effect")
 
 
+def asks(lever: LeverFigure) -> bool:
+    """Whether a page shows it among those to think of: it could act, or a flag is open about what it acts on while
+    nothing in the newest values shows a need. Neither stands with those that nobody needs."""
+    return lever.can_act or _contradicted(lever)
+
+
+def _contradicted(lever: LeverFigure) -> bool:
+    """Whether an open flag stands against "no need"."""
+    first = lever.why[0].key if lever.why else ""
+    return not lever.can_act and first in _NO_NEED and bool(lever.flags)
+
+
+def lever_why(lever: LeverFigure) -> tuple[Message, ...]:
+    """Why it could act or not; where a flag stands against "no need", the flag first and no word that all is well."""
+    if not _contradicted(lever):
+        return lever.why
+    more = len(lever.flags) - _NAMED
+    others = (Message("lever.flags_more", {"count": more}),) if more > 0 else ()
+    return (*lever.flags[:_NAMED], *others, *(m for m in lever.why if m.key != _ENOUGH))
+
+
 def without_decides(messages: tuple[Message, ...]) -> tuple[Message, ...]:
     """The messages but for who decides, which the page says once."""
     return tuple(m for m in messages if m.key != DECIDES)
@@ -59,7 +83,7 @@ def without_decides(messages: tuple[Message, ...]) -> tuple[Message, ...]:
 
 def lever_reasons(lever: LeverFigure, reader: Reader) -> tuple[str, ...]:
     """Why it could act or not, and what limits it, a sentence each; a limit says how sure it is where it is not."""
-    return tuple(lever_sentence(m, reader) for m in without_decides((*lever.why, *lever.limits)))
+    return tuple(lever_sentence(m, reader) for m in (*lever_why(lever), *without_decides(lever.limits)))
 
 
 def lever_sentence(message: Message, reader: Reader) -> str:

@@ -7,7 +7,8 @@ from app.words.taken import BEFORE_TAKEN, TAKEN
 _STATE = "pick severe=severe acidosis;acidotic=acidotic;resolved=not acidotic"
 _DOUBT = (
     "pick unconfirmed=holds a value nobody confirmed;unusual=holds an unusual value;"
-    "implausible=holds values that hardly belong together;inconsistent=does not agree with itself;"
+    "implausible=holds values that hardly belong together;"
+    "inconsistent=has a pH, PCO2 and bicarbonate that do not agree;"
     "corrected=was corrected;disputed=is disputed: corrected twice;"
     "site assumed=has no site recorded, taken as arterial"
 )
@@ -16,6 +17,7 @@ _POPULATION = "validated in: {population}"
 EVIDENCE: Final[dict[str, str]] = {
     "evidence.after_beta_agonist":
         "A beta-agonist or a nebuliser was given at {at:time}[[ ({text})]]: lactate may come from it.",
+    "evidence.above_usual": "{quantity:name} {value:q} at {at:time}, above the patient's usual {usual:q}.",
     "evidence.ceiling":
         "Ceiling of care: {ceiling}. Escalating here means "
         "{ceiling:pick no intubation=a decision with the responsible clinician, not intubation;"
@@ -33,9 +35,9 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.not_trusted": "{quantity:name} was not to be trusted for {minutes:minutes} from {since:time} to "
         "{at:time}.",
     "evidence.not_settled": "Not judged again by the gas of {gas_at:time}[[ (pH {ph:2})]]: "
-        "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;off support=it was taken off support;"
+        "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;off support=it was drawn off support;"
         "no answer=it neither meets nor ends it}[[{missing:list} missing]].",
-    "evidence.off_support": "Taken off support.",
+    "evidence.off_support": "This gas was drawn off support.",
     "evidence.on_oxygen": "On FiO2 {fio2:fraction}.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
     "evidence.overdue": "{what:due} was due by {until:time}.",
@@ -53,13 +55,14 @@ EVIDENCE: Final[dict[str, str]] = {
         "[[, median {median:q} up to {at:time}]].",
     "evidence.think_of": "Think of {what}.",
     "evidence.timing": "{minutes:minutes} after {anchor:pick start=the start;change=the change;"
-        "interface=the new interface;break_end=the break;else=the change} of {anchor_at:time}.",
+        "interface=the new interface;break_end=the end of the break;pressure raised=the pressure was raised;"
+        "else=the change}{anchor:pick pressure raised=, at;else= of} {anchor_at:time}.",
     "evidence.twice": "{quantity:name} {first:q} ({first_at:time}) and {second:q} ({second_at:time}), "
         "both at or below {high:q}.",
     "evidence.unknown": "{quantity:name} is not known.",
     "evidence.value": "{quantity:name} {value:qt}[[ (median from {since:time} to {at:clock})]]"
         "[[!since| at {at:time}]], {relation} {limit:q}.",
-    "evidence.venous": "A venous sample.",
+    "evidence.venous": "It is a venous sample.",
 }  # fmt: skip
 
 DUE: Final[dict[str, str]] = {
@@ -76,15 +79,17 @@ DUE: Final[dict[str, str]] = {
     "due.mask_check": "{marker:marker} since {since:time}.",
     "due.oxygen_review": "{marker:marker} since {since:time}.",
     "due.probable_break": "A break that nobody logged is probable from {break_at:time}[[ to {end_at:time}]].",
-    "due.reassessment": "After the settings of {anchor_at:time}[[; last looked at {last_at:time}]].",
-    "due.reassessment_flag": "{marker:marker} since {since:time}[[; last looked at {last_at:time}]].",
+    "due.reassessment": "After the settings of {anchor_at:time}[[; last look at the patient {last_at:time}]].",
+    "due.reassessment_flag":
+        "{marker:marker} since {since:time}[[; last look at the patient {last_at:time}]].",
     "due.repeat_gas": "After the gas of {gas_at:time}: pH {ph:2}[[, {state:" + _STATE + "}]].",
     "due.repeat_gas_flag": "{marker:marker} since {since:time}; last gas at {gas_at:time}.",
     "due.repeat_gas_soon": "After the gas of {gas_at:time}: pH {ph:2}, {why:pick severe=severe acidosis;"
         "doubtful=in doubt;worse=worse;"
         "worse since start=worse since the start;gain lost=gain lost;not better=not better}.",
-    "due.skin_check": "Skin under the mask last seen, or support begun, at {last_at:time}.",
-    "due.spo2_recheck": "One reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",
+    "due.first_skin_check": "No skin check logged since {of} began at {since_at:time}.",
+    "due.skin_check": "Skin under the mask last seen at {last_at:time}.",
+    "due.spo2_recheck": "One SpO2 reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",
 }  # fmt: skip
 
 CONCERN: Final[dict[str, str]] = {
@@ -127,6 +132,9 @@ _RATE = ("[[ (median from {since:time} to {at:clock})]]"
 
 LEVERS: Final[dict[str, str]] = {
     "lever.acidosis": "pH {ph:2} with PaCO2 {paco2_mmHg:gas} at {at:time}.",
+    "lever.acidosis_off_support": "Acidosis off support: pH {ph:2} with PaCO2 {paco2_mmHg:gas} at {at:time}.",
+    "lever.flag_open": "Open flag: {marker:marker}, since {since:time}.",
+    "lever.flags_more": "{count:0} more about it {count:pick 1=is;else=are} open.",
     "lever.event": "{channel:name}[[: {text}]] at {at:time}.",
     "lever.fio2_at_maximum": "FiO2 is at its highest.",
     "lever.acidosis_not_known":
@@ -151,7 +159,7 @@ LEVERS: Final[dict[str, str]] = {
         "On the mask for {hours:hours} of the last {of_hours:hours}: at least {least:fraction}, enough.",
     "lever.mask_time_not_known": "Time on the mask is not known: the start is not recorded.",
     "lever.mode_has_no_rate": "[[{mode}: ]]the mode has no such setting.",
-    "lever.no_acidosis": "No acidosis with a high PaCO2 in the gas of {at:time}[[: pH {ph:2}]]"
+    "lever.no_acidosis": "No acidosis with a high PaCO2 in the newest gas on support, {at:time}[[: pH {ph:2}]]"
         "[[, PaCO2 {paco2_mmHg:gas}]].",
     "lever.no_gas": "No gas on support yet.",
     "lever.no_pressure_support": "CPAP gives no pressure support; two levels of pressure would.",

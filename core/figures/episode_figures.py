@@ -126,7 +126,7 @@ def episode_figures(
         due=due,
         concern=concern(ctx, flags, due),
         now=now_figure(seen),
-        levers=levers(ctx),
+        levers=levers(ctx, flags),
         expected_co2=expected_co2(ctx),
         oxygenation=oxygenation_figure(ctx, walls),
         ventilation=ventilation_figure(ctx, walls),

@@ -45,6 +45,13 @@ class Facts:
         return self.gas is not None and arms.acute_hypercapnia(self.gas, self.ctx.policy)
 
     @property
+    def acidosis_off_support(self) -> GasFigure | None:
+        """The newest gas of all, where it was drawn off support and shows acute hypercapnia."""
+        newest = next((g for g in reversed(self.ctx.gases) if g.site != "venous"), None)
+        shows = newest is not None and newest.off_support and arms.acute_hypercapnia(newest, self.ctx.policy)
+        return newest if shows else None
+
+    @property
     def acidosis_missing(self) -> tuple[str, ...]:
         """What the newest gas lacks to show or rule out acute hypercapnia; nothing where one half rules it out."""
         gas = self.gas

@@ -5,12 +5,15 @@ Never an order, never a dose: a qualified person decides, and every lever says s
 
 from __future__ import annotations
 
+from collections.abc import Iterable
+from dataclasses import replace
 from math import isnan
 
 from core.judgement.context import Context
 from core.judgement.lever_facts import DECIDES, Facts
+from core.judgement.lever_flags import flags_on
 from core.judgement.setting_change import number
-from core.judgement.shapes import LeverFigure
+from core.judgement.shapes import FlagFigure, LeverFigure
 from core.judgement.vitals_near import Found
 from core.record.message import Message, Value
 
@@ -18,17 +21,21 @@ LONG_TI = frozenset({"neuromuscular", "chest wall", "obesity hypoventilation"})
 RATE_MODES = frozenset({"BPAP-ST", "BPAP-T", "pressure control", "volume-assured"})
 
 
-def levers(ctx: Context) -> tuple[LeverFigure, ...]:
-    """The levers of an episode on support, in the order to think of them; empty before and after support."""
+def levers(ctx: Context, flags: Iterable[FlagFigure] = ()) -> tuple[LeverFigure, ...]:
+    """The levers of an episode on support, in the order to think of them; empty before and after support.
+
+    Each names the open ones of `flags` that are about what it acts on.
+    """
     support = ctx.support
     if support.start is None or support.start > ctx.as_of or support.end is not None:
         return ()
-    facts = Facts(ctx)
-    return tuple(
+    facts, flags = Facts(ctx), tuple(flags)
+    found = (
         lever(facts)
         for lever in (_fio2, _mask, _secretions, _time_on_mask, _pressure_support, _backup_rate,
                       _inspiratory_time, _epap)
     )  # fmt: skip
+    return tuple(replace(lever, flags=flags_on(lever.key, flags)) for lever in found)
 
 
 def _lever(
@@ -124,6 +131,8 @@ def _time_on_mask(f: Facts) -> LeverFigure:
         why.append(_say("off_mask_acidotic", since=off.start))
     if f.acidotic and hours < least * of_hours:
         why.append(_say("little_mask_time", hours=hours, of_hours=of_hours, least=least))
+    if (drawn_off := f.acidosis_off_support) is not None:
+        why.append(_say("acidosis_off_support", ph=drawn_off.ph, paco2_mmHg=drawn_off.paco2_mmHg, at=drawn_off.at))
     enough = [_say("mask_time_enough", hours=hours, of_hours=of_hours, least=least)]
     return _lever("time_on_mask", bool(why), why or (enough if f.acidotic else _acidosis(f)), present)
 

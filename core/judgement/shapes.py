@@ -336,6 +336,9 @@ class LeverFigure:
     why: tuple[Message, ...] = ()
     present: Message | None = None
     limits: tuple[Message, ...] = ()
+    flags: tuple[Message, ...] = ()
+    """The open flags about what it acts on, the strongest first: with one of them nobody is told that there is no
+    need."""
 
 
 @dataclass(frozen=True, slots=True)
