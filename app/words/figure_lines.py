@@ -151,8 +151,9 @@ class FigureLines:
 
     def gas_marks(self, g: GasFigure) -> list[str]:
         """State and doubts of a gas, as words."""
-        marks = ((g.off_support, "drawn off support"), (g.consistent is False, "does not agree with itself"),
-                 (g.doubt, "doubtful"), (g.corrected, "corrected"), (g.disputed, "disputed"))  # fmt: skip
+        marks = ((g.off_support, "drawn off support"),
+                 (g.consistent is False, "pH, PCO2 and bicarbonate do not agree"), (g.doubt, "doubtful"),
+                 (g.corrected, "corrected"), (g.disputed, "disputed"))  # fmt: skip
         state = [self.state(g.state, g.at)] if g.state else []
         return state + [self.tr(word) for holds, word in marks if holds]
 
@@ -363,12 +364,13 @@ class FigureLines:
         if leak.median_L_per_min is None:
             return self.why(self.tr("Leak"), leak.reasons, "median_L_per_min") or self.tr("Leak not recorded")
         taken = taken_words(leak.median_of, leak.latest_at, self.reader)
-        meant = self.tr(leak.definition) if leak.definition else self.tr("what the device calls leak is not known")
-        text = f"{self.tr('Leak')} {formats.fixed(leak.median_L_per_min, 0)} L/min ({taken}; {meant})"
+        names = {"unintentional": self.tr("Unintentional leak"), "total": self.tr("Total leak, port included,")}
+        name = names.get(leak.definition or "", self.tr("Leak"))
+        meant = "" if leak.definition else f"; {self.tr('what the device calls leak is not known')}"
+        text = f"{name} {formats.fixed(leak.median_L_per_min, 0)} L/min ({taken}{meant})"
         if leak.minutes_over_limit is not None and leak.limit_L_per_min is not None:
-            follows = (
-                leak.definition == "total"
-            )  # its limit goes with the pressure: the one of now is not that of then
+            # a total leak's limit goes with the pressure: the one of now is not that of then
+            follows = leak.definition == "total"
             over = self.tr("in that time {length} over its limit, now {limit} L/min" if follows
                            else "in that time {length} over {limit} L/min")  # fmt: skip
             length, limit = formats.minutes(leak.minutes_over_limit), formats.fixed(leak.limit_L_per_min, 0)

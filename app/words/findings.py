@@ -26,10 +26,10 @@ GAS: Final[dict[str, str]] = {
         "FiO2 on the gas ({gas_fio2:fraction}) and in the settings ({setting:fraction}) differ.",
     "gas.implausible":
         "pH and PCO2 hardly belong together: they make a bicarbonate of {calculated:1} mmol/L, outside {low:trim} to "
-        "{high:trim}. One of the two is probably wrong.",
+        "{high:trim} mmol/L. One of the two is probably wrong.",
     "gas.inconsistent":
         "pH, PCO2 and bicarbonate do not agree: {hco3:1} mmol/L reported, {calculated:1} calculated "
-        "(at most {within:trim} apart is accepted).",
+        "(at most {within:trim} mmol/L apart is accepted).",
     "gas.needs_arterial": "needs an arterial sample (this one is {site})",
     "gas.kpa_suspected":
         "{channel:name} {value:trim} mmHg is hardly possible. "
@@ -49,11 +49,11 @@ GAS: Final[dict[str, str]] = {
     "consistency.fio2_cannot_be_right":
         "PaO2 {pao2:gas} with PaCO2 {paco2:gas} cannot be on FiO2 {fio2:fraction}.",
     "consistency.kpa_taken_for_mmhg":
-        "{paco2:trim} may be kPa: as such ({mmHg:0} mmHg) the values agree.",
+        "PCO2 {paco2:trim} may be kPa: as such ({mmHg:0} mmHg) the values agree.",
     "consistency.mmhg_taken_for_kpa":
-        "The value may have been mmHg already: as {mmHg:0} mmHg the values agree.",
+        "PCO2 may have been mmHg already: as {mmHg:0} mmHg the values agree.",
     "consistency.standard_bicarbonate":
-        "Bicarbonate {hco3:1} mmol/L may be the standard one; the actual one would be {calculated:1}.",
+        "Bicarbonate {hco3:1} mmol/L may be the standard one; the actual one would be {calculated:1} mmol/L.",
     "consistency.copying_slip":
         "One of pH {ph:2}, PCO2 {paco2:gas}, bicarbonate {hco3:1} mmol/L may be misread.",
     "specimen.capillary_is_not_arterial": "capillary {channel:name} does not stand for arterial",
@@ -78,21 +78,22 @@ GAS: Final[dict[str, str]] = {
     "gas_class.metabolic_alkalosis": f"Metabolic alkalosis{_SECOND}.",
     "reason.acidotic_all_the_same": "pH {ph:2} is still below {low:2}.",
     "reason.bicarbonate": "Bicarbonate {hco3:1} mmol/L (normal {low:0} to {high:0}).",
-    "reason.lines_too_close": "The acute ({acute:1}) and chronic ({chronic:1}) lines lie too close to tell apart.",
+    "reason.lines_too_close":
+        "The lines of acute ({acute:1} mmol/L) and chronic ({chronic:1} mmol/L) lie too close to tell apart.",
     "reason.metabolic_line":
         "At bicarbonate {hco3:1} mmol/L a PaCO2 of {expected_paco2:gas} (within {tolerance:gas}) is expected.",
     "reason.paco2": "PaCO2 {paco2:gas} (normal {low:gas} to {high:gas}).",
     "reason.ph": "pH {ph:2} (normal {low:2} to {high:2}).",
     "reason.respiratory_lines":
         "Bicarbonate {hco3:1} mmol/L; {acute:1} is expected when acute, {chronic:1} when chronic "
-        "(within {tolerance:trim}).",
+        "(within {tolerance:trim} mmol/L).",
 }  # fmt: skip
 
 COURSE: Final[dict[str, str]] = {
     "course.at_gas": "measured at {gas_at:time}",
     "course.before_first_gas": "before the first gas at {gas_at:time}",
-    "course.between_gases": "between the gases of {from_at:time} and {to_at:time}; never judged by",
-    "course.beyond_last_gas": "after the last gas at {gas_at:time}; never judged by",
+    "course.between_gases": "between the gases of {from_at:time} and {to_at:time}; nothing is judged by it",
+    "course.beyond_last_gas": "after the last gas at {gas_at:time}; nothing is judged by it",
     "course.changed": "not drawn past the change at {changed_at:time}",
     "course.no_gas": "no gas after this change",
     "course.not_yet": "not before {at:time}",
@@ -145,7 +146,7 @@ SCORES: Final[dict[str, str]] = {
     "caveat.constants_from_memory": "a constant is from memory; confirm it locally",
     "caveat.other_rules_of_age": "two other published rules give {quarter:0} and {regression:0} mmHg",
     "caveat.usual_paco2_is_a_guess":
-        "a guess from bicarbonate, spoilt by diuretics and any metabolic disturbance; never judged by",
+        "a guess from bicarbonate, spoilt by diuretics and any metabolic disturbance; nothing is judged by it",
     "caveat.within": "within {tolerance:gas}",
     "caveat.co2_production_and_dead_space_constant": "assumes constant CO2 production and dead space",
     "caveat.dead_space_assumed": "dead space is assumed",
@@ -157,11 +158,11 @@ SCORES: Final[dict[str, str]] = {
     "caveat.validated_off_support": "validated breathing without support",
     "hacor_updated.band":
         "{points:trim} points: {band:pick 0=lowest;1=second;2=third;3=highest} of four bands of risk",
-    "news2.high": "{at_least:pick yes=at least ;no=}{lowest:0} points: high (emergency assessment, {sure})",
-    "news2.low": "{lowest:0} points: low ({sure})",
-    "news2.low_medium": "{lowest:0} points with one parameter at 3: urgent ward review ({sure})",
-    "news2.medium": "{at_least:pick yes=at least ;no=}{lowest:0} points: medium (urgent review, {sure})",
-    "news2.none": "{lowest:0} points ({sure})",
+    "news2.high": "{at_least:pick yes=at least ;no=}{lowest:0} points: high, emergency assessment [{sure}]",
+    "news2.low": "{lowest:0} points: low [{sure}]",
+    "news2.low_medium": "{lowest:0} points with one parameter at 3: urgent ward review [{sure}]",
+    "news2.medium": "{at_least:pick yes=at least ;no=}{lowest:0} points: medium, urgent review [{sure}]",
+    "news2.none": "{lowest:0} points [{sure}]",
     "news2.scale":
         "SpO2 scale {scale}[[ (the target is {low:0}-{high:0} %: scale 2 needs a clinician's record)]]",
     "population.acute_hypercapnia":
@@ -169,7 +170,7 @@ SCORES: Final[dict[str, str]] = {
     "population.below_16": "age {age:0} is below 16, outside its population",
     "population.input_unknown": "whether it is inside its population is not known: {input:name} is missing",
     "population.not_copd": "not COPD, outside its population",
-    "population.not_hypoxaemic": "P/F {pf:0} mmHg is above {limit:0}, outside its population",
+    "population.not_hypoxaemic": "P/F {pf:gas} is above {limit:gas}, outside its population",
     "population.not_on_mask": "not on the mask, outside its population",
     "population.support_unknown": "whether it was on the mask is not known",
     "population.unknown": "whether it is inside its population is not known",
@@ -185,7 +186,7 @@ SCORES: Final[dict[str, str]] = {
     "tidal_volume.leak_not_known": "tidal volume doubtful: leak not known",
     "tidal_volume.leak_too_large":
         "tidal volume doubtful: leak over {limit:0} L/min or {share:fraction} of the inspired volume",
-    "tidal_volume.void": "tidal volume void: the mask was off",
+    "tidal_volume.void": "tidal volume void: the mask was off, or no breath was measured",
 }  # fmt: skip
 
 DERIVED: Final[dict[str, str]] = {

@@ -33,9 +33,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.baseline_early": "The baseline, of {gas_at:time}, is an early gas: not steady.",
     "response.capillary": "Capillary gas: stands for arterial in pH and PCO2, not in PO2.",
     "response.early": "Early gas, less than 30 min after: not steady.",
-    "response.off_support": "The gas of {gas_at:time} was taken off support: it is not used for a verdict.",
+    "response.off_support": "The gas of {gas_at:time} was drawn off support: it is not used for a verdict.",
     "response.venous_only": "The gas of {gas_at:time} is venous: no verdict for arterial.",
-    "response.by_spo2_alone": "The oxygen arm answers by SpO2 alone.",
+    "response.by_spo2_alone": "Judged by SpO2 alone, without a gas.",
     "response.co2_not_active":
         "No verdict: the baseline gas of {gas_at:time} shows no acute hypercapnia, so CO2 alone gives none, "
         "and the oxygen arm cannot answer.",
@@ -48,10 +48,11 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.fio2_differs": "P/F not compared: FiO2 {before:fraction} then {after:fraction}.",
     "response.fio2_not_known": "P/F not compared: FiO2 of {side:pick " + _SIDE + "} not known.",
     "response.gain_lost": "Gain lost: {quantity:name} was {best:q} at {best_at:time}, now {now:q}.",
-    "response.inconsistent": "{side:pick " + _WHO + "} of {gas_at:time} does not agree with itself.",
+    "response.inconsistent": "{side:pick " + _WHO + "} of {gas_at:time} has a pH, PCO2 and bicarbonate that do not "
+        "agree.",
     "response.no_baseline":
         "No baseline: {because:pick no gas=no gas before it;too old=the last gas is too old;"
-        "other support=the last gas was taken in another state of support;venous=only a venous gas before it}"
+        "other support=the last gas was drawn in another state of support;venous=only a venous gas before it}"
         "[[ (newest {newest_at:time})]]; at most {limit_h:trim} h before is accepted.",
     "response.no_effect": "It acts on neither CO2 nor oxygen.",
     "response.no_gas_yet": "No gas in the window yet.",

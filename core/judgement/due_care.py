@@ -38,12 +38,19 @@ def skin_items(seen: Observed) -> Iterator[Item]:
     for last, done in zip([begun, *looks], ends, strict=True):
         if (seen.settings.at(done or seen.as_of).interface or "") in NO_SKIN_UNDER:
             continue
-        item = Item("skin_check", Message("due.skin_check", {"last_at": last}), last + int(rule.from_min * MINUTE),
-                    last + int(rule.until_min * MINUTE), rule.soon_min)  # fmt: skip
+        because = Message("due.skin_check", {"last_at": last}) if last in looks else _none_yet(seen, begun)
+        item = Item("skin_check", because, last + int(rule.from_min * MINUTE), last + int(rule.until_min * MINUTE),
+                    rule.soon_min)  # fmt: skip
         if done is not None:
             by = words[done].by or words[done].id if done in words else seen.entry_id("skin_check", done)
             item = replace(item, done_at=done, done_by=by)
         yield item
+
+
+def _none_yet(seen: Observed, begun: Instant) -> Message:
+    """That nobody looked at the skin since support began, or since logging did where support ran already."""
+    of = "support" if begun == seen.support.start else "logging"
+    return Message("due.first_skin_check", {"of": of, "since_at": begun})
 
 
 def assessed(seen: Observed) -> list[Instant]:

@@ -13,7 +13,7 @@ from core.judgement.policy_sections import MarkerRule
 from core.judgement.response_noise import direction, paco2_noise, pf_noise, ph_noise, rr_noise
 from core.judgement.shapes import GasFigure
 from core.record.instant import HOUR
-from core.record.message import Message
+from core.record.message import Message, Value
 
 
 def paco2_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -43,7 +43,8 @@ def _rise(seen: Observed, rule: MarkerRule, low: GasFigure, gas: GasFigure) -> P
     limit = rule.pressures["paco2"]
     above = say.is_above(gas.paco2_mmHg, limit) and (usual is None or gas.paco2_mmHg > usual)
     if above and usual is not None and usual > limit.mmHg:
-        told.append(say.value_is("paco2", gas.paco2_mmHg, say.ABOVE, usual, gas.at))
+        own: dict[str, Value] = {"quantity": "paco2", "value": gas.paco2_mmHg, "usual": usual, "at": gas.at}
+        told.append(Message("evidence.above_usual", own))
     elif above:
         told.append(say.pressure_is("paco2", gas.paco2_mmHg, say.ABOVE, limit, gas.at))
     poor, known = _no_better(seen, low, gas)

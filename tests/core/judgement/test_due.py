@@ -286,3 +286,10 @@ def test_nothing_is_missed_over_a_clock_change():
     ctx = judged(build(shifted), at("d2 02:01"), shipped_policy())
     (item,) = [d for d in due_items(ctx, evaluate(ctx)) if d.what == "gas"]
     assert (item.due_from, item.due_until, item.state) == (at("d2 00:30"), at("d2 02:00"), "overdue")
+
+
+def test_a_first_skin_check_says_since_when_nobody_looked():
+    began = due(BASE, "04:45", "skin_check")[0].because
+    assert (began.key, began.values["of"]) == ("due.first_skin_check", "support")
+    looked = next(d for d in due(BASE + "05:10 skin_check", "05:30", "skin_check") if d.state != "done")
+    assert looked.because.key == "due.skin_check"

@@ -36,7 +36,7 @@ def test_the_usual_paco2_raises_the_limit():
     assert met(MARK, usual + "58") == ""
     assert met(MARK, usual + "60") == ""
     assert met(MARK, usual + "61") == "04:00-"
-    assert told(MARK, usual + "61")["evidence.value"].values["limit"] == 60
+    assert told(MARK, usual + "61")["evidence.above_usual"].values["usual"] == 60
 
 
 def test_a_pf_that_is_not_better_counts_beside_a_low_value():
