@@ -26,6 +26,7 @@ from app.words import Reader, sentence
 
 if TYPE_CHECKING:
     from storage.intake.findings import Intake
+    from storage.reading_sources import TakenSource
 
 
 class IntakeDialog(AskingDialog):
@@ -44,6 +45,7 @@ class IntakeDialog(AskingDialog):
         self.go.setText(self.tr("Take it in"))
         self._model, self._path, self._reader = model, path, reader
         self.intake: Intake | None = None
+        self._taking = False
         self.summary = plain_label()
         self.summary.setWordWrap(True)
         self.bar = QProgressBar()
@@ -101,9 +103,26 @@ class IntakeDialog(AskingDialog):
         self._ask()
 
     def reject(self) -> None:
-        """Leave; what still runs is stopped and rolled back."""
+        """Leave; what still runs is stopped and rolled back. Whether it was in time is looked up, not assumed."""
         self._model.runner.cancel(self._number)
-        super().reject()
+        if not self._taking:
+            super().reject()
+            return
+        self.summary.setText(self.tr("Stopping."))
+        self._model.ask(intake_operations.taken, None, done=self._stopped, failed=self._failed)
+
+    def _stopped(self, outcome: Outcome[tuple[TakenSource, ...]]) -> None:
+        self._taking = False
+        if self.intake is None or self.intake.source.id not in {s.id for s in outcome.value}:
+            super().reject()
+            return
+        self.bar.hide()
+        self._tell_left("")
+        self.summary.setText(self.words(self.intake))
+        self.refuse(
+            self.tr("It was taken in before it could be stopped. File, Files taken in... withdraws it whole.")
+        )
+        self.go.setEnabled(False)
 
     def submit(self) -> None:
         if self.intake is None:
@@ -113,6 +132,7 @@ class IntakeDialog(AskingDialog):
         self.bar.setRange(0, 0)
         self._clock.start()
         request = TakeRequest(self.intake, self.leave_out.isChecked())
+        self._taking = True
         self._number = self._model.ask(intake_operations.take, request, done=self._taken, failed=self._not_taken)
 
     def _progressed(self, progress: Progress) -> None:
@@ -212,6 +232,7 @@ class IntakeDialog(AskingDialog):
 
     def _not_taken(self, failure: Failure) -> None:
         """Why it was not taken. Where others have recorded of the same episodes since, it is read again and shown."""
+        self._taking = False
         if failure.message.key != "intake.overtaken":
             self._failed(failure)
             return

@@ -19,7 +19,8 @@ Progress = Callable[[int, int], None]
 _CHUNKS_AT_ONCE = 5_000
 """Blocks of samples in one batch: enough to be quick, few enough to keep memory bounded."""
 
-_BYTES_AT_ONCE = 8 << 20
+_BYTES_AT_ONCE = 2 << 20
+"""Bytes of samples in one batch: between batches the work tells how far it is, and can be stopped."""
 
 _LEFT_OUT_NAMED = 1_000
 
@@ -98,6 +99,8 @@ def _batches(
             progress(done, len(intake.chunks))
         done += len(some)
         yield DraftBatch(by, "intake", chunks=some, source=intake.source), now
+    if progress is not None:
+        progress(done, done)  # the last moment at which it can be stopped
 
 
 def _parts(chunks: Iterable[DraftChunk]) -> Iterator[tuple[DraftChunk, ...]]:

@@ -1,5 +1,7 @@
 """Taking in, row by row and file by file: ticks on refused rows, codes explained, other windows, leaving."""
 
+from threading import Event
+
 import pytest
 from PySide6.QtCore import Qt
 
@@ -232,3 +234,35 @@ def test_every_value_says_which_file_it_came_from(qtbot, window, tmp_path):
     assert {row.text(3) for row in rows if "kPa" in row.text(2)} == {"HL7, results.hl7"}
     assert "AB" in {row.text(3) for row in rows}, "what was typed names its person alone"
     correct.reject()
+
+
+@pytest.mark.parametrize("in_time", [True, False])
+def test_leaving_while_it_is_taken_says_whether_that_was_in_time(qtbot, window, tmp_path, monkeypatch, in_time):
+    path = tmp_path / "night.csv"
+    path.write_text(HEAD + GOOD)
+    dialog = shown(qtbot, window, path)
+    begun, go_on = Event(), Event()
+    take = operations.take
+
+    def slow(store, who, now, request):
+        if not in_time:
+            made = take(store, who, now, request)
+        begun.set()
+        go_on.wait(30)
+        return take(store, who, now, request) if in_time else made
+
+    monkeypatch.setattr(operations, "take", slow)
+    dialog.go.click()
+    assert begun.wait(30)
+    dialog.reject()
+    assert dialog.isVisible(), "whether anything stands is looked up first"
+    go_on.set()
+    if in_time:
+        until(qtbot, lambda: not dialog.isVisible())
+    else:
+        until(qtbot, lambda: "before it could be stopped" in dialog.wrong.text())
+        dialog.reject()
+        assert not dialog.isVisible()
+    settled(qtbot, window)
+    with Store.open(tmp_path / "ward.luffmark") as store:
+        assert store.has_episode("bed-9") is not in_time
