@@ -26,15 +26,15 @@ LEAST_MARK_CONTRAST: Final = 3.0
 
 
 class Verdict(StrEnum):
-    """What a gas said about its anchor."""
+    """What a gas said about its anchor, in the words of the judgement: what is shown by mistake is no identifier."""
 
     BETTER = "better"
     WORSE = "worse"
     MIXED = "mixed"
-    NO_CLEAR_CHANGE = "no_clear_change"
-    OVER_CORRECTION = "over_correction"
-    NOT_YET_KNOWN = "not_yet_known"
-    NOT_JUDGED = "not_judged"
+    NO_CLEAR_CHANGE = "no clear change"
+    OVER_CORRECTION = "over-correction"
+    NOT_YET_KNOWN = "not yet known"
+    NOT_JUDGED = "not judged"
 
 
 class GasState(StrEnum):
@@ -92,12 +92,12 @@ def tier_word(tier: Tier) -> str:
 
 
 def verdict_of(text: str) -> Verdict:
-    """The verdict that is written with spaces, hyphens or underscores; ValueError where there is none.
+    """The verdict that the judgement gave; ValueError where there is none of that name.
 
     >>> verdict_of("over-correction")
-    <Verdict.OVER_CORRECTION: 'over_correction'>
+    <Verdict.OVER_CORRECTION: 'over-correction'>
     """
-    return Verdict(text.strip().lower().replace(" ", "_").replace("-", "_"))
+    return Verdict(text)
 
 
 @dataclass(frozen=True, slots=True)
