@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 
 from core.record.channels import CHANNELS, MODES, Channel, Group, Kind
-from core.record.log_line import words_of_channels
+from core.record.line_words import words_of_channels
 
 _FIRST = (
     "ipap",

@@ -81,6 +81,7 @@ TEMPLATES: Final[dict[str, str]] = {
         "Leak of episode {episode} was {first} and is {second} at the same time: which one is it?",
     "line.empty": "Nothing is typed yet. For example: {accepted}",
     "line.epap_needed": "A pressure support needs an EPAP, and none is in force. For example: {accepted}.",
+    "line.gas_unit": "{unit} counts for every pressure of this gas.",
     "line.long_ago": "That was {hours:hours} ago.",
     "line.mode_becomes": "The mode becomes {mode}[[ (was {before})]].",
     "line.mode_contradicts": "{mode} has no {channel:name} pressure. For example: {accepted}.",

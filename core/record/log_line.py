@@ -7,7 +7,8 @@ The grammar, in order:
     item   16/6 [35]             IPAP / EPAP, then FiO2
            ps 10                 pressure support: IPAP is EPAP + 10
            bp 118/64             systolic / diastolic pressure
-           CHANNEL VALUE [UNIT]  a key or short word of the registry
+           CHANNEL VALUE [UNIT]  a key or short word of the registry; the value may touch it: rr28
+           cpap 10 [40]          one pressure, then FiO2
            MODE                  bpap-st, cpap, off ... alone
            EVENT                 gas sent, mask off ... alone; note, told, drug and texts take the rest
 
@@ -20,10 +21,12 @@ import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from math import isnan
+from typing import NoReturn
 
 from core.record.channels import CHANNELS, MODES, Channel, Group, Kind
 from core.record.entries import NewEntry, from_reading
 from core.record.instant import HOUR, MINUTE, Instant
+from core.record.line_words import CHANNEL_WORDS, names_beginning, parted
 from core.record.local_time import latest_wall_time
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
@@ -95,12 +98,13 @@ def read_line(
 ) -> LogLine:
     """Read one line over the settings in force at its moment (`SettingsInForce.at` serves as `in_force`).
 
-    A gas pressure typed without a unit is in `gas_unit`, the ward's own.
+    A gas has one pressure unit: a pressure typed without one is in that of the line's other, else in `gas_unit`,
+    the ward's own. A `/` before the line, the key that leads to it, says nothing.
 
     Raises:
         RecordError: naming the word that could not be read and what is accepted.
     """
-    at, rest, typed = _read_time(text.strip(), now, zone)
+    at, rest, typed = _read_time(text.strip().lstrip("/ "), now, zone)
     if not rest:
         raise refuse("line.empty", accepted=EXAMPLE)
     before = in_force if isinstance(in_force, Settings) else in_force(at)
@@ -148,18 +152,6 @@ def _after(before: Settings, readings: Sequence[Reading]) -> Settings:
     )  # fmt: skip
 
 
-def words_of_channels() -> dict[str, Channel]:
-    """Every word that names a channel on the line: keys, keys with spaces, short words."""
-    found: dict[str, Channel] = {}
-    for c in CHANNELS.values():
-        for word in (c.key, c.key.replace("_", " "), *c.short):
-            found.setdefault(word, c)
-    return found
-
-
-_CHANNEL_WORDS = words_of_channels()
-
-
 class _Items:
     """Reads the items of a line from left to right."""
 
@@ -175,6 +167,7 @@ class _Items:
     def read(self) -> list[Reading]:
         while self.i < len(self.words):
             self._item()
+        self._settle_pressures()
         self._settle_support()
         self._settle_mode()
         keys = [r.channel.key for r in self.readings]
@@ -202,16 +195,24 @@ class _Items:
             self._add("mode", _MODE_WORDS[low])
         elif _NUMBER.fullmatch(word) and not self.readings:
             self._bare_numbers()
+        elif (apart := parted(word)) is not None:
+            self.words[self.i : self.i + 1] = apart
         else:
-            if not self.readings and _LIKE_A_TIME.fullmatch(word):
-                raise refuse("line.time_form", value=word, accepted=TIME_FORMS)
-            raise refuse("line.word_unknown", word=word, accepted=_INSTEAD.get(low, EXAMPLE))
+            self._refuse_word(word)
+
+    def _refuse_word(self, word: str) -> NoReturn:
+        if not self.readings and _LIKE_A_TIME.fullmatch(word):
+            raise refuse("line.time_form", value=word, accepted=TIME_FORMS)
+        instead, longer = _INSTEAD.get(word.casefold()), names_beginning(word)
+        if longer and instead is None:  # `mask offf`: the word behind it is the one to mend
+            word, instead = " ".join(self.words[self.i : self.i + 2]), " | ".join(longer)
+        raise refuse("line.word_unknown", word=word, accepted=instead or EXAMPLE)
 
     def _channel(self) -> Channel | None:
         """The channel named here, two words first; leaves the reader behind the name."""
         for count in (3, 2, 1):
             name = " ".join(self.words[self.i : self.i + count]).casefold()
-            channel = _CHANNEL_WORDS.get(name)
+            channel = CHANNEL_WORDS.get(name)
             if channel is not None and self.i + count <= len(self.words):
                 if channel.key == "cpap" and not self._number_follows(count):
                     return None  # "cpap" alone is the mode
@@ -261,6 +262,8 @@ class _Items:
                          accepted=f"a number in {channel.unit or 'its unit'}")  # fmt: skip
         self.i += 1
         self._add(channel.key, match[1], match[2] or self._unit_word(channel))
+        if channel.key == "cpap":
+            self._bare_fio2()
 
     def _unit_word(self, channel: Channel) -> str:
         """A unit as a word of its own, when the next word is one of this channel's and names no channel."""
@@ -268,7 +271,7 @@ class _Items:
             return ""
         word = self.words[self.i].casefold()
         names = {n for u in channel.units for n in (u.name.casefold(), *u.spellings) if n}
-        if word in names and word not in _CHANNEL_WORDS:
+        if word in names and word not in CHANNEL_WORDS:
             self.i += 1
             return word
         return ""
@@ -304,9 +307,23 @@ class _Items:
         return self.words[self.i - 1]
 
     def _add(self, key: str, text: str, unit: str = "") -> None:
-        if not unit and CHANNELS[key].units is MMHG_GAS:
+        channel = CHANNELS[key]
+        if not unit and channel.units is MMHG_GAS:
+            if channel.group is Group.GAS:  # its unit is known once the whole gas has been read
+                self.readings.append(Reading(channel, None, None, text, "", None))
+                return
             unit = self.gas_unit
-        self.readings.append(read_value(CHANNELS[key], text, unit))
+        self.readings.append(read_value(channel, text, unit))
+
+    def _settle_pressures(self) -> None:
+        """A unit written behind one pressure of the gas counts for all that have none."""
+        pressures = [r for r in self.readings if r.channel.group is Group.GAS and r.channel.units is MMHG_GAS]
+        written = {r.raw_unit for r in pressures if r.raw_unit}
+        unit = written.pop() if len(written) == 1 else self.gas_unit
+        bare = [r for r in pressures if not r.raw_unit]
+        self.readings = [read_value(r.channel, r.raw, unit) if r in bare else r for r in self.readings]
+        if bare and len(bare) < len(pressures) and not written:
+            self.notes.append(Message("line.gas_unit", {"unit": unit}))
 
     def _oxygen(self) -> None:
         """`o2 35%` is an FiO2, `o2 4 l` a flow; a small bare number could be either, so it is asked about."""

@@ -66,7 +66,7 @@ def test_completing_keeps_what_stands_before(text, data):
 
 def test_every_offered_word_is_understood_by_the_line():
     from core.record.channels import MODES
-    from core.record.log_line import words_of_channels
+    from core.record.line_words import words_of_channels
 
     known = words_of_channels().keys() | {m.casefold() for m in MODES}
     assert [w for w in words() if w not in known] == []

@@ -48,6 +48,19 @@ def values(text, in_force=BILEVEL):
         ("o2 35", {"fio2": 0.35}),
         ("o2 4 l", {"o2_flow": 4.0}),
         ("o2 4l/min", {"o2_flow": 4.0}),
+        ("cpap 10 40", {"cpap": 10.0, "mode": "CPAP", "fio2": 0.4}),
+        ("cpap 10 40% rr 22", {"cpap": 10.0, "mode": "CPAP", "fio2": 0.4, "rr": 22.0}),
+        ("rr28 spo291", {"rr": 28.0, "spo2": 91.0}),
+        ("ipap16 epap6 fio235", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
+        ("bp118/64", {"sbp": 118.0, "dbp": 64.0}),
+        (
+            "ps12",
+            {
+                "ipap": 17.0,
+            },
+        ),
+        ("/16/6 35", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
+        ("/ rr 28", {"rr": 28.0}),
         ("ceiling of care no intubation", {"ceiling_of_care": "no intubation"}),
     ],
 )
@@ -68,6 +81,36 @@ def test_a_gas_pressure_without_a_unit_is_in_the_wards():
     assert [(r.channel.key, r.raw_unit) for r in line.readings] == [("ph", "pH"), ("paco2", "kPa"), ("pao2", "kPa")]
     said = read_line("paco2 62 mmHg bp 120/70", now=NOW, zone="UTC", in_force=BILEVEL, gas_unit="kPa")
     assert [r.raw_unit for r in said.readings] == ["mmHg", "mmHg", "mmHg"]
+
+
+@pytest.mark.parametrize(
+    ("line", "ward", "units", "told"),
+    [
+        ("ph 7,31 paco2 9,2 pao2 8,1 kpa", "mmHg", ["kPa", "kPa"], True),
+        ("paco2 4.1 pao2 8.1kPa", "mmHg", ["kPa", "kPa"], True),  # 4.1 mmHg would be refused
+        ("paco2 9.2 kpa ph 7.31 pao2 8.1", "mmHg", ["kPa", "kPa"], True),
+        ("paco2 62 mmhg pao2 58", "kPa", ["mmHg", "mmHg"], True),
+        ("paco2 9.2 kpa pao2 61 mmhg", "mmHg", ["kPa", "mmHg"], False),
+        ("paco2 62 pao2 58", "mmHg", ["mmHg", "mmHg"], False),
+        ("paco2 8.2 pao2 8.1 kpa", "kPa", ["kPa", "kPa"], True),
+    ],
+)
+def test_a_unit_behind_one_pressure_of_a_gas_counts_for_all_without_one(line, ward, units, told):
+    read = read_line(line, now=NOW, zone="UTC", in_force=BILEVEL, gas_unit=ward)
+    assert [r.raw_unit for r in read.readings if r.channel.key != "ph"] == units
+    assert ("line.gas_unit" in [n.key for n in read.notes]) is told
+
+
+def test_the_usual_paco2_is_no_part_of_the_gas():
+    read = read_line("paco2 9.2 kpa usual paco2 50", now=NOW, zone="UTC", in_force=BILEVEL)
+    assert [r.raw_unit for r in read.readings] == ["kPa", "mmHg"]
+
+
+def test_a_refusal_blames_the_word_that_is_wrong():
+    with pytest.raises(RecordError) as told:
+        read("mask offrr 28")
+    assert told.value.message.values["word"] == "mask offrr"
+    assert "mask off" in told.value.message.values["accepted"]
 
 
 def test_one_pressure_makes_the_mode_cpap_and_says_so():
