@@ -13,7 +13,7 @@ from math import isnan
 
 from app.telling.language import in_language
 from core.record.channels import CHANNELS, Group, Kind
-from core.record.instant import MINUTE, Instant
+from core.record.instant import HOUR, MINUTE, Instant
 from core.record.local_time import candidates, local
 from core.record.units import MMHG_PER_KPA, written
 
@@ -88,6 +88,17 @@ def wall(at: Instant, zone: str) -> str:
     '28-Mar-2026 02:10'
     """
     return f"{day(at, zone)} {clock(at, zone)}"
+
+
+def lately(at: Instant, now: Instant, zone: str) -> str:
+    """The time on the wall where it can be no other day's; with its date where it could.
+
+    >>> from core.record.instant import HOUR, parse
+    >>> now = parse("2026-03-28T05:30:00Z")
+    >>> lately(now - 7 * HOUR, now, "UTC"), lately(now - 13 * HOUR, now, "UTC")
+    ('22:30', '27-Mar-2026 16:30')
+    """
+    return clock(at, zone) if abs(now - at) < 12 * HOUR else wall(at, zone)
 
 
 def span(start: Instant, end: Instant, zone: str) -> str:

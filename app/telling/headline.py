@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from app.look.formats import clock, fixed, gas_pressure
+from app.look.formats import fixed, gas_pressure, lately
 from app.look.theme import GasState, Verdict, state_word, verdict_of, verdict_word
 from app.telling.gas_doubt import state_in_doubt
 from app.telling.phrases import state_of, translate
@@ -163,7 +163,7 @@ def pf_word(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:
     told = f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit)}"
     if f.now.pf_at is None or f.now.pf_at == gas.at:
         return told
-    return translate("headline", "{pf} at {time}").format(pf=told, time=clock(f.now.pf_at, zone))
+    return translate("headline", "{pf} at {time}").format(pf=told, time=lately(f.now.pf_at, f.as_of, zone))
 
 
 def beside_pf(pf: str, state: str) -> str:
@@ -196,4 +196,4 @@ def off_mask_word(f: EpisodeFigures, zone: str) -> str:
     since = f.now.off_mask_since or f.support.break_since
     if since is None or f.support.ended_at is not None:
         return ""
-    return translate("headline", "mask off since {time}").format(time=clock(since, zone))
+    return translate("headline", "mask off since {time}").format(time=lately(since, f.as_of, zone))

@@ -107,7 +107,7 @@ class FigureLines:
             why = f", {s.end_reason}" if s.end_reason else ""
             text += f"; {self.tr('ended')} {self.reader.time(s.ended_at)}{why}"
         elif s.break_since is not None:
-            text += f"; {self.tr('off the mask since')} {formats.clock(s.break_since, self.reader.zone)}"
+            text += f"; {self.tr('off the mask since')} {self.reader.time(s.break_since)}"
         return text
 
     def ph(self, gas: GasFigure) -> str:
@@ -281,13 +281,13 @@ class FigureLines:
         parts = []
         if f.seen_at is not None:
             by = f" {self.tr('by')} {f.seen_by}" if f.seen_by else ""
-            parts.append(f"{self.tr('seen')} {formats.clock(f.seen_at, self.reader.zone)}{by}")
+            parts.append(f"{self.tr('seen')} {self.reader.time(f.seen_at)}{by}")
         if f.settled_at is not None:
             by = f" {self.tr('by')} {f.settled_by}" if f.settled_by else ""
             why = f" ({f.settled_why})" if f.settled_why else ""
-            parts.append(f"{self.tr('settled')} {formats.clock(f.settled_at, self.reader.zone)}{by}{why}")
+            parts.append(f"{self.tr('settled')} {self.reader.time(f.settled_at)}{by}{why}")
         elif f.ended_at is not None:
-            parts.append(f"{self.tr('no longer met since')} {formats.clock(f.ended_at, self.reader.zone)}")
+            parts.append(f"{self.tr('no longer met since')} {self.reader.time(f.ended_at)}")
         if f.undone_by_correction:
             parts.append(self.tr("undone by a correction"))
         if f.outside_population:

@@ -21,24 +21,25 @@ TEMPLATES: Final[dict[str, str]] = {
     "effect.pressure_support": _PRESSURES + "pressure support {before:trim} to {after:trim} cmH2O.",
     "effect.rate": "Backup rate {before:trim} to {after:trim}/min.",
     "effect.rate_none":
-        "Backup rate {before:trim} to {after:trim}/min takes no effect: the own rate is {own_rate:0}/min.",
+        "Backup rate {before:trim} to {after:trim}/min takes no effect: the patient's own rate is {own_rate:0}/min.",
     "effect.rate_not_known":
-        "Backup rate {before:trim} to {after:trim}/min; whether it takes effect is not known (no own rate).",
+        "Backup rate {before:trim} to {after:trim}/min; whether it takes effect is not known: "
+        "no rate of the patient's own is known.",
     "effect.support_kept": _PRESSURES + "pressure support stays {after:trim} cmH2O.",
     "effect.ti": "Inspiratory time {before:trim} to {after:trim} s.",
     "response.acidosis_off_support": "Acidosis off support: pH {ph:2} at {gas_at:time}.",
     "response.also_changed": "{steps:pick 1=One other change;else=Other changes} in between, "
         "the last at {last_at:time}.",
-    "response.before_baseline": "The gas of {gas_at:time} was taken before the baseline.",
+    "response.before_baseline": "The gas of {gas_at:time} was drawn before the baseline.",
     "response.baseline_early": "The baseline, of {gas_at:time}, is an early gas: not steady.",
     "response.capillary": "Capillary gas: stands for arterial in pH and PCO2, not in PO2.",
-    "response.early": "Early gas, less than 30 min after: not steady.",
+    "response.early": "Early gas, before the response window: not steady.",
     "response.off_support": "The gas of {gas_at:time} was drawn off support: it is not used for a verdict.",
-    "response.venous_only": "The gas of {gas_at:time} is venous: no verdict for arterial.",
+    "response.venous_only": "The gas of {gas_at:time} is venous: it gives no verdict on arterial gases.",
     "response.by_spo2_alone": "Judged by SpO2 alone, without a gas.",
     "response.co2_not_active":
         "No verdict: the baseline gas of {gas_at:time} shows no acute hypercapnia, so CO2 alone gives none, "
-        "and the oxygen arm cannot answer.",
+        "and oxygen cannot be compared.",
     "response.compared":
         "{quantity:name} {before:q} to {after:q} ({change:q+}): "
         "{direction:pick up=up beyond;down=down beyond;inside noise=within} measurement error ({noise:qn}).",
@@ -55,7 +56,7 @@ TEMPLATES: Final[dict[str, str]] = {
         "other support=the last gas was drawn in another state of support;venous=only a venous gas before it}"
         "[[ (newest {newest_at:time})]]; at most {limit_h:trim} h before is accepted.",
     "response.no_effect": "It acts on neither CO2 nor oxygen.",
-    "response.no_gas_yet": "No gas in the window yet.",
+    "response.no_gas_yet": "No gas in the response window yet.",
     "response.not_attributable": "The gas of {gas_at:time} cannot be attributed: {steps:pick 1=a later change "
         "lies;else=later changes lie} between.",
     "response.not_compared_with_start": "Not compared with the start.",
