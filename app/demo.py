@@ -3,9 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import replace
 from pathlib import Path
-from uuid import uuid4
 
 from core.record.instant import HOUR, MINUTE, Instant, parse
 from core.record.message import Message
@@ -69,9 +67,9 @@ def _as_recorded(intake: Intake) -> Iterator[tuple[DraftBatch, Instant]]:
         late = draft.entry.channel in _ROUND and (draft.entry.at // MINUTE + len(draft.entry.episode)) % 8 == 0
         groups.setdefault(draft.entry.at + (_LATE if late else _SOON), []).append(draft)
     for at, entries in groups.items():
-        yield DraftBatch(BY, "intake", tuple(entries), source=replace(intake.source, id=str(uuid4()))), at
+        yield DraftBatch(BY, "intake", tuple(entries), source=intake.source), at
     blocks: dict[Instant, list[DraftChunk]] = {}
     for chunk in intake.chunks:
         blocks.setdefault(chunk.block.t1 + MINUTE, []).append(chunk)
     for at, chunks in blocks.items():
-        yield DraftBatch(BY, "intake", chunks=tuple(chunks), source=replace(intake.source, id=str(uuid4()))), at
+        yield DraftBatch(BY, "intake", chunks=tuple(chunks), source=intake.source), at

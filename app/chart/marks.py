@@ -166,8 +166,9 @@ def pennant(
     cloth.closeSubpath()
     painter.save()
     painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-    painter.setPen(solid_pen(colour, 1.5))
     hollow = quiet or tier is Tier.REMARK
+    loudest = tier is Tier.ESCALATE and not quiet
+    painter.setPen(solid_pen(c.ink if loudest else colour, 1.5))  # an edge of ink: the strongest where no hue is seen
     painter.setBrush(QColor(c.raised) if hollow else colour)
     painter.drawPath(cloth)
     painter.drawLine(QPointF(x, top), QPointF(x, foot))

@@ -9,7 +9,7 @@ from pathlib import Path
 from time import monotonic
 from typing import Final
 
-from PySide6.QtCore import QEventLoop, QPoint
+from PySide6.QtCore import QEventLoop, QPoint, QThread
 from PySide6.QtGui import QCursor
 from PySide6.QtWidgets import QApplication, QDialog, QWidget
 
@@ -33,6 +33,7 @@ LINE: Final = "20m ago 22/6 32 rr 27"
 BACK_MIN: Final = 120
 """How far the picture of a look back looks back."""
 _PATIENCE_S: Final = 60.0
+_PAUSE_MS: Final = 2
 
 
 def draw_all(folder: Path, store_path: Path | None = None, *, passphrase: str | None = None) -> tuple[Path, ...]:
@@ -179,6 +180,7 @@ def _strip(window: MainWindow) -> Iterator[tuple[str, QWidget]]:
         return
     strip.set_text(LINE)
     _settle(window)
+    strip.line.deselect()
     yield "strip", window
     strip.leave()
 
@@ -206,7 +208,8 @@ def _wait_for(window: MainWindow, done: Callable[[], bool]) -> None:
     while not done():
         if monotonic() - began > _PATIENCE_S:
             raise RuntimeError(f"the window {window.windowTitle()!r} did not get its figures in {_PATIENCE_S:.0f} s")
-        QApplication.processEvents(QEventLoop.ProcessEventsFlag.WaitForMoreEvents, 20)
+        QApplication.processEvents(QEventLoop.ProcessEventsFlag.AllEvents, 20)
+        QThread.msleep(_PAUSE_MS)  # with a time limit Qt waits for nothing, and a busy loop would slow the worker
     _pass_events()
 
 

@@ -39,6 +39,16 @@ def test_nothing_is_doubled_by_a_second_intake(tmp_path: Path) -> None:
             assert (len(again.entries), again.sample_count) == (0, 0)
 
 
+def test_every_file_of_the_night_is_listed_once_with_what_it_brought(tmp_path: Path) -> None:
+    from app.operations.intake import taken
+
+    with Store.open(demo.make_demo_store(tmp_path)) as store:
+        found = taken(store, "AB", demo.demo_now(), None).value
+    assert sorted(s.name for s in found) == sorted(f.name for f in sample_data.files())
+    assert all(s.entries + s.samples > 0 for s in found)
+    assert sum(s.samples for s in found) > 20_000
+
+
 def test_a_folder_that_is_not_there_is_refused(tmp_path: Path) -> None:
     with pytest.raises(StoreError) as refused:
         demo.make_demo_store(tmp_path / "gone")
