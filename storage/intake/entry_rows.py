@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import replace
+from uuid import NAMESPACE_URL, uuid5
 
 from core.record.channels import CHANNELS, Kind
 from core.record.entries import Action, Entry, NewEntry
@@ -26,6 +27,36 @@ _IN_FILE = 1 << 40
 
 _UNKNOWN = 1 << 62
 """The recording time of a row that states none: now, which is later than any."""
+
+
+class HeldRows:
+    """What the store holds of an episode: the keys of its rows, but for those withdrawn with their whole file."""
+
+    def __init__(self, held: tuple[Entry, ...]) -> None:
+        self._ids = {e.id for e in held}
+        self._withdrawn: set[str] = set()
+        for e in sorted(held, key=lambda e: -e.seq):  # from the end of each chain to what it began with
+            whole = e.action is Action.WITHDRAW and e.reason == WITHDRAWN_WHOLE
+            if e.replaces and (whole or e.id in self._withdrawn):
+                self._withdrawn |= {e.id, e.replaces}
+        self.keys = {_key_of(e) for e in held if e.id not in self._withdrawn}
+
+    def id_for(self, known: str) -> str | None:
+        """The id under which a row whose id the store knows may come again; None where what it brought stands."""
+        candidate, times = known, 0
+        while times == 0 or candidate in self._ids:
+            if candidate not in self._withdrawn:
+                return None
+            times += 1
+            candidate = str(uuid5(NAMESPACE_URL, f"luffmark:again:{known}:{times}"))
+        return candidate
+
+
+def _renamed(row: EntryRow, anew: Mapping[str, str]) -> EntryRow:
+    """A row with its new id, and with those of the rows that it replaces."""
+    draft, replaces = row.draft, row.draft.entry.replaces
+    entry = replace(draft.entry, replaces=anew[replaces]) if replaces in anew else draft.entry
+    return replace(row, draft=replace(draft, entry=entry, id=anew.get(draft.id, draft.id)))
 
 
 def _key_of(e: NewEntry) -> _Key:
@@ -75,28 +106,27 @@ class EntryRows:
         return out
 
     def _without_held(self, rows: list[EntryRow]) -> list[EntryRow]:
-        """Rows that the store has are counted and skipped, even those corrected there since."""
+        """Rows that the store has are counted and skipped, even those corrected there since.
+
+        Those that were withdrawn with their whole file may come again; where a row has an id, under a new one.
+        """
         if self._existing is None:
             return rows
         ids = self._existing.known_entry_ids([r.draft.id for r in rows if r.draft.id])
-        keys = {e: self._held_keys(e) for e in {r.draft.entry.episode for r in rows}}
-        out = []
+        held = {e: HeldRows(self._held_entries(e)) for e in {r.draft.entry.episode for r in rows}}
+        out: list[EntryRow] = []
+        anew: dict[str, str] = {}
         for row in rows:
-            entry = row.draft.entry
-            if row.draft.id in ids or (not row.draft.id and _key_of(entry) in keys[entry.episode]):
+            entry, own = row.draft.entry, row.draft.id
+            of = held[entry.episode]
+            new_id = of.id_for(own) if own in ids else own
+            if new_id is None or (not own and _key_of(entry) in of.keys):
                 self.repeated += 1
-            else:
-                out.append(row)
-        return out
-
-    def _held_keys(self, episode: str) -> set[_Key]:
-        """What the store holds of an episode, but for rows withdrawn with their whole file: those may come again."""
-        held = self._held_entries(episode)
-        again: set[str] = set()
-        for e in sorted(held, key=lambda e: -e.seq):  # from the end of each chain to what it began with
-            if e.replaces and (e.id in again or (e.action is Action.WITHDRAW and e.reason == WITHDRAWN_WHOLE)):
-                again |= {e.id, e.replaces}
-        return {_key_of(e) for e in held if e.id not in again}
+                continue
+            if new_id != own:
+                anew[own] = new_id
+            out.append(row)
+        return [_renamed(row, anew) for row in out] if anew else out
 
     @staticmethod
     def _in_order(rows: list[EntryRow]) -> list[EntryRow]:

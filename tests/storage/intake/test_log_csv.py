@@ -13,6 +13,7 @@ from core.record.message import RecordError
 from storage.intake.batch import take_in
 from storage.intake.findings import Intake
 from storage.intake.log_csv import read_log_csv
+from storage.intake.withdrawal import withdraw_source
 from storage.store import Store
 from tests.storage.conftest import NOW
 
@@ -376,3 +377,23 @@ def test_progress_is_told_and_reading_can_be_cancelled(tmp_path: Path) -> None:
     assert told[-1] == (path.stat().st_size, path.stat().st_size)
     with pytest.raises(RecordError, match=r"intake.cancelled"):
         read_log_csv(path, now=NOW, cancelled=lambda: True)
+
+
+def test_a_file_with_ids_may_come_again_after_its_withdrawal_and_only_then(tmp_path: Path, store: Store) -> None:
+    first, second = (f"8cccf3e7-077c-4bf5-951d-8315573c14d{n}" for n in (5, 6))
+    path = tmp_path / "a.csv"
+    path.write_text(
+        "episode,at,channel,value,unit,by,note,id,replaces,action\n"
+        f"E1,2026-03-27T22:00:00+00:00,rr,24,/min,AB,,{first},,assert\n"
+        f"E1,2026-03-27T22:00:00+00:00,rr,26,/min,AB,,{second},{first},correct\n"
+    )
+    for _ in range(3):
+        intake = read_log_csv(path, now=NOW, existing=store)
+        assert (intake.refusals, len(intake.entries), intake.repeated_in_store) == ((), 2, 0)
+        take_in(store, intake, by="AB", now=NOW)
+        assert store.episode("E1").number("rr").v.tolist() == [26.0]
+        again = read_log_csv(path, now=NOW, existing=store)
+        assert (again.entries, again.repeated_in_store) == ((), 2)
+        made = withdraw_source(store, intake.source.id, by="CD", now=NOW)
+        assert (made.entries, made.emptied) == (1, ("E1",)), "its own correction brings nothing back"
+    assert store.verify() == ()
