@@ -6,7 +6,8 @@ from app.words.taken import BEFORE_TAKEN, TAKEN
 
 _STATE = "pick severe=severe acidosis;acidotic=acidotic;resolved=not acidotic"
 _DOUBT = (
-    "pick unconfirmed=holds a value nobody confirmed;unusual=holds an unusual value;"
+    "pick early=was drawn before the response window: not steady;"
+    "unconfirmed=holds a value nobody confirmed;unusual=holds an unusual value;"
     "implausible=holds values that hardly belong together;"
     "inconsistent=has a pH, PCO2 and bicarbonate that do not agree;"
     "corrected=was corrected;disputed=is disputed: corrected twice;"

@@ -6,7 +6,7 @@ from collections.abc import Iterable
 
 from core.judgement import arms
 from core.judgement.markers import evidence as say
-from core.judgement.markers.gas_points import from_gases
+from core.judgement.markers.gas_points import compared_doubts, from_gases
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Point, Spell
 from core.judgement.policy_sections import MarkerRule
@@ -49,7 +49,7 @@ def _rise(seen: Observed, rule: MarkerRule, low: GasFigure, gas: GasFigure) -> P
         told.append(say.pressure_is("paco2", gas.paco2_mmHg, say.ABOVE, limit, gas.at))
     poor, known = _no_better(seen, low, gas)
     met = True if above or poor else False if known else None
-    return Point(gas.at, met, (*told, *poor, *say.gas_doubts(gas)))
+    return Point(gas.at, met, (*told, *poor, *compared_doubts(seen, gas)))
 
 
 def _no_better(seen: Observed, low: GasFigure, gas: GasFigure) -> tuple[list[Message], bool]:
@@ -88,7 +88,7 @@ def rate_falling_worse_gas(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
             points.append(Point(gas.at, None))
             continue
         said, slower = rr
-        points.append(Point(gas.at, slower, (said, *(m for _, m in worse), *say.gas_doubts(gas))))
+        points.append(Point(gas.at, slower, (said, *(m for _, m in worse), *compared_doubts(seen, gas))))
     return from_gases(seen, points)
 
 

@@ -11,6 +11,7 @@ from dataclasses import replace
 from types import MappingProxyType
 from typing import Final
 
+from core.judgement.markers.evidence import gas_doubts
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Point, Spell, from_points
 from core.judgement.shapes import GasFigure
@@ -43,6 +44,16 @@ def from_gases(seen: Observed, points: Iterable[Point]) -> list[Spell]:
     if not doubtful:
         return from_points(points)
     return from_points(replace(p, met=None) if p.met is False and p.at in doubtful else p for p in points)
+
+
+def compared_doubts(seen: Observed, gas: GasFigure) -> tuple[Message, ...]:
+    """What weakens a gas in a comparison with another: its own doubts, and that it is early, so not steady.
+
+    A relapse in an early gas is told all the same (rules of judgement 1.1 and 1.5): it must not wait for the window.
+    """
+    early = any(a.judged.timing == "early" for a in seen.attributed.get(gas.at, ()))
+    told = (Message("evidence.gas_doubt", {"doubt": "early", "at": gas.at}),) if early else ()
+    return (*told, *gas_doubts(gas))
 
 
 def lacking(gas: GasFigure, needs: Iterable[str]) -> tuple[str, ...]:

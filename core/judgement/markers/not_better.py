@@ -12,7 +12,7 @@ from functools import partial
 from math import isnan
 
 from core.judgement.markers import evidence as say
-from core.judgement.markers.gas_points import from_gases
+from core.judgement.markers.gas_points import compared_doubts, from_gases
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
 from core.judgement.markers.spells import Point, Spell
@@ -314,7 +314,7 @@ def _relapse(seen: Observed, quantity: str) -> list[Spell]:
             since.ph_lost if since is not None and quantity == "ph" else since.pf_lost if since is not None else None
         )
         said = since.reasons.get(LOST[quantity]) if since is not None else None
-        told = (_lost(said, gas.at), *say.gas_doubts(gas)) if lost and said is not None else ()
+        told = (_lost(said, gas.at), *compared_doubts(seen, gas)) if lost and said is not None else ()
         points.append(Point(gas.at, lost, told))  # None: the gas lacks what it would take to tell
     return from_gases(seen, points)
 

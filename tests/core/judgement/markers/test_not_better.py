@@ -237,3 +237,19 @@ def test_an_alkalosis_is_no_gain_and_a_normal_ph_no_loss():
     assert (
         met("paco2_rising", log.format("ph 7.40 paco2 38 rr 30") + "02:00 rr 30\n") == "05:00-"
     )  # by its own reason
+
+
+@pytest.mark.parametrize(("minutes", "is_early"), [("04:17", True), ("04:30", False)])
+def test_a_loss_in_an_early_gas_is_told_with_its_caution(minutes: str, is_early: bool) -> None:
+    """Rules 1.1 and 1.5: named at once, and said that it is not steady; in the window without the caution."""
+    log = (
+        COPD
+        + "00:30 ph 7.26 paco2 75 pao2 60 gas_fio2 30\n"
+        + START
+        + "02:00 ph 7.34 paco2 60 pao2 70\n04:00 ipap 22\n"
+    )
+    found = flags(log + f"{minutes} ph 7.28 paco2 72 pao2 50\n")
+    for marker in ("gain_lost", "oxygen_gain_lost", "paco2_rising"):
+        told = next(f for f in found if f.marker == marker)
+        doubts = [m.values["doubt"] for m in told.evidence if m.key == "evidence.gas_doubt"]
+        assert ("early" in doubts) is is_early, marker
