@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import sys
+from typing import Any
 
 from app.commands.context import Context
 from app.operations import backup as operations
@@ -15,7 +16,12 @@ def run(context: Context, args: argparse.Namespace) -> int:
     with context.open(check=False) as store:
         made = operations.write(store, context.by, context.now(), args.file).value
     key_file = None if made.key_file is None else str(made.key_file)
-    value = {"backup": str(made.path), "key_file": key_file, "bytes": made.size, "head": made.printed_head}
+    value: dict[str, Any] = {
+        "backup": str(made.path),
+        "key_file": key_file,
+        "bytes": made.size,
+        "head": made.printed_head,
+    }
     both = f" It opens only with its key file: keep {made.key_file} beside it." if key_file else ""
     if not made.damage:
         context.answer(f"Backup {made.path}, {made.size:,} bytes, head {made.printed_head}.{both}", value)

@@ -9,7 +9,7 @@ from app.operations import figures as operations
 from app.words import sentence
 from core.figures.json_form import to_json
 from core.judgement.shapes import EpisodeFigures
-from storage.errors import StoreError
+from storage.errors import store_error
 
 
 def run(context: Context, args: argparse.Namespace) -> int:
@@ -25,7 +25,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
             ward = operations.WardRequest(as_of, args.as_known_at, everything=True)
             answer = operations.of_ward(store, context.by, context.now(), ward).value
             if answer.unread:  # a list that lacks a patient would be taken for whole
-                raise StoreError(answer.unread[0])
+                raise store_error("store.episode_not_as_written", episode=", ".join(answer.unread))
             found = answer.figures
     if context.json:
         value = {"episodes": [to_json(f, lambda m: sentence(m, reader)) for f in found]}

@@ -33,6 +33,7 @@ if TYPE_CHECKING:
 
 BUSY = "store.busy_for_now"
 BACKUP, DISK, DRAFT, FORM, DAMAGED, LEFT = "backup", "disk", "draft", "form", "damaged", "left"
+UNREAD = "unread"
 """Subjects of notices that are no message of the store."""
 FORM_AGAIN = "form_again"
 RETRY_MS = 5_000
@@ -110,6 +111,7 @@ class Keeping(QObject):
         self.chain.unsound.connect(self._unsound)
         opened.model.changed.connect(self._changed)
         opened.model.runner.troubled.connect(self._troubled)
+        opened.feed.unread.connect(self._unread)
         self.surroundings.start(opened.model.session.store_path)
 
     def closing(self) -> None:
@@ -253,6 +255,12 @@ class Keeping(QObject):
         if failure.message.key in STANDING:
             told = sentence(failure.message, self._window.reader)
             self.notices.tell(DAMAGED, told, lasting=True, ways=ways_out_of(failure.message.key))
+
+    def _unread(self, episodes: tuple[str, ...]) -> None:
+        """A ward that lacks a patient must not be taken for whole."""
+        told = Message("ward.unread", {"episodes": ", ".join(episodes)})
+        text = sentence(told, self._window.reader) if episodes else ""
+        self.notices.tell(UNREAD, text, lasting=True, ways=ways_out_of("store.damaged"))
 
     def _unsound(self, found: tuple[Message, ...]) -> None:
         """A plain store holds what was never recorded: whoever reads figures must know, and no backup may go."""

@@ -23,11 +23,14 @@ from core.record.local_time import check_not_future
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
 from core.record.settings import NO_SETTINGS
+from storage.errors import StoreError
 
 if TYPE_CHECKING:
     from storage.store import Store
 
 MOST_KEY = 60
+OF_ONE_EPISODE = frozenset({"store.episode_not_as_written", "store.damaged_chunk"})
+"""Damage that is found in the record of one episode and says nothing of others."""
 _NUMBER_UNIT = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))\s*(.*)")
 
 
@@ -172,6 +175,21 @@ def check_known(store: Store, key: str) -> None:
         shown = ", ".join(near or list(known[:8])) or "none yet"
         more = "" if near or len(known) <= 8 else f" and {len(known) - 8} more"
         raise refuse("episode.unknown", episode=key, accepted=f"{shown}{more}", near=bool(near))
+
+
+def load_if_sound(store: Store, key: str, as_known_at: Instant | None = None) -> Episode | None:
+    """As `load`; None where what a damaged store keeps of this one episode is not what was written.
+
+    Raises:
+        RecordError: `episode.unknown`.
+        StoreError: damage that is not of one episode alone.
+    """
+    try:
+        return load(store, key, as_known_at)
+    except StoreError as error:
+        if error.message.key not in OF_ONE_EPISODE:
+            raise
+        return None
 
 
 def load(store: Store, key: str, as_known_at: Instant | None = None) -> Episode:

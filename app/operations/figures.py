@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from app.operations.episode import load
+from app.operations.episode import load, load_if_sound
 from app.operations.episode_shelf import shelf_of
 from app.operations.outcome import Outcome, report
 from app.operations.policy import in_force
@@ -16,16 +16,12 @@ from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
-from core.record.message import Message
-from storage.errors import StoreError
 
 if TYPE_CHECKING:
     from storage.store import Store
 
 RECENTLY_ENDED = 24 * HOUR
 """Episodes that ended this long before the moment still stand on the ward."""
-OF_ONE_EPISODE = frozenset({"store.episode_not_as_written", "store.damaged_chunk"})
-"""Damage that is found in the record of one episode and says nothing of others."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,14 +59,14 @@ class WardAnswer:
     """The episodes of a ward in order of concern, whom to see first foremost, and the policy they were judged by:
     the one in force as known at the moment asked for.
 
-    `unread`: what is wrong with episodes of a damaged store of which nothing can be told. Who shows the ward says so:
-    the others are not hidden for one.
+    `unread`: episodes of a damaged store of which nothing can be told. Who shows the ward says so: the others are not
+    hidden for one.
     """
 
     as_of: Instant
     episodes: tuple[EpisodeAnswer, ...]
     policy: Policy
-    unread: tuple[Message, ...] = ()
+    unread: tuple[str, ...] = ()
 
     @property
     def figures(self) -> tuple[EpisodeFigures, ...]:
@@ -96,15 +92,12 @@ def of_ward(store: Store, who: str, now: Instant, request: WardRequest) -> Outco
     policy = in_force(store, _head_for(store, request.as_known_at))
     keys, stages = _keys(store, request), _stages(store, request.as_known_at)
     answers: list[EpisodeAnswer] = []
-    unread: list[Message] = []
+    unread: list[str] = []
     for number, key in enumerate(keys):
         report(number, len(keys))
-        try:
-            record = load(store, key, request.as_known_at)
-        except StoreError as error:
-            if error.message.key not in OF_ONE_EPISODE:
-                raise
-            unread.append(error.message)
+        record = load_if_sound(store, key, request.as_known_at)
+        if record is None:
+            unread.append(key)
             continue
         if not _has_begun(record, request):
             continue

@@ -6,7 +6,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from app.operations.episode import check_known, load
+from app.operations.episode import check_known, load, load_if_sound
 from app.operations.outcome import Outcome
 from app.operations.policy import in_force
 from app.operations.recording import Recorded
@@ -40,7 +40,9 @@ def keep_transitions(store: Store, who: str, now: Instant, request: Iterable[str
     policy = in_force(store)
     entries: list[NewEntry] = []
     for key in (k for k in request if store.has_episode(k)):  # one may have been removed meanwhile
-        record = load(store, key)
+        record = load_if_sound(store, key)
+        if record is None:  # the ward says so; the flags of others are kept all the same
+            continue
         flags = episode_figures(record, now, policy).flags
         entries += transitions(flags, record.transitions, key, policy.hash, now)
     if not entries or not store.takes_writing():

@@ -8,7 +8,6 @@ from app.keeping.preferences import Preferences
 from app.operations import figures as figure_operations
 from app.operations.figures import EpisodeAnswer, WardAnswer, WardRequest
 from app.operations.outcome import Outcome
-from app.session.failure import Failure
 from app.session.model import SessionModel
 from app.session.shift import shift_of
 from app.session.state import Changed, What
@@ -26,6 +25,9 @@ class WardFeed(QObject):
 
     refreshed = Signal(object)
     """`WardContent`."""
+    unread = Signal(object)
+    """The keys of episodes that are missing because what is kept of them is not what was written; () when all is well
+    again."""
 
     def __init__(self, model: SessionModel, preferences: Preferences, parent: QObject | None = None) -> None:
         super().__init__(parent)
@@ -36,6 +38,7 @@ class WardFeed(QObject):
         self._all_wanted = False
         self._answered_once = False
         self._policy: Policy | None = None
+        self._unread: set[str] = set()
         model.changed.connect(self.model_changed)
 
     @property
@@ -85,6 +88,7 @@ class WardFeed(QObject):
         asked = tuple(self._answers) if self._all_wanted else tuple(self._wanted)
         for key in asked:  # one of which nothing stands any more gives no answer
             self._answers.pop(key, None)
+        unread = (self._unread - set(asked) | set(answer.unread)) if not self._all_wanted else set(answer.unread)
         self._all_wanted = False
         self._wanted.clear()
         for one in answer.episodes:
@@ -95,8 +99,9 @@ class WardFeed(QObject):
             for key, a in self._answers.items()
         }
         self.refreshed.emit(self.content())
-        if answer.unread:
-            self._model.runner.troubled.emit(Failure(answer.unread[0], "ward figures"))
+        if unread != self._unread:
+            self._unread = unread
+            self.unread.emit(tuple(sorted(unread)))
 
     def content(self) -> WardContent:
         """What the ward view shows now."""

@@ -96,6 +96,8 @@ TEMPLATES: Final[dict[str, str]] = {
         "Check it once it is open (Store, Check this store).",
     "store.episode_not_as_written": "What is kept of {episode} is not what was written, so no figure is given of it. "
         "Check the store, restore a backup, or save what can be read.",
+    "ward.unread": "Missing from the ward: {episodes}. What is kept of it is not what was written. Look at that "
+        "patient, then restore a backup, or save what can be read.",
     "store.not_as_written": "What the store keeps is not what was written, so no figure is given that rests on it. "
         "Check the store, restore a backup, or save what can be read.",
     "store.damaged_chunk": "A block of device samples is damaged. Run verify, and restore a backup.",

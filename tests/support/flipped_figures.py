@@ -15,7 +15,7 @@ from core.record.instant import HOUR, MINUTE, parse
 from core.record.message import RecordError
 from core.record.samples import DeviceSamples
 from storage.engine import raw_connection
-from storage.errors import StoreError
+from storage.errors import StoreError, store_error
 from storage.store import Store
 from tests.support.flips import flipped_at, put_back
 
@@ -65,7 +65,7 @@ def told(path: Path) -> list[object]:
             made.append(to_json(figures.of_episode(store, "AB", LATER, one).value.figures, lambda m: m.key))
         ward = figures.of_ward(store, "AB", LATER, figures.WardRequest(LATER)).value
         if ward.unread:
-            raise StoreError(ward.unread[0])
+            raise store_error("store.episode_not_as_written", episode=ward.unread[0])
         return [*made, [to_json(f, lambda m: m.key) for f in ward.figures], ward.policy.hash]
 
 

@@ -26,13 +26,25 @@ def forged(tmp_path):
 def test_a_changed_value_is_told_in_the_window_and_stays_told(qtbot, forged):
     with open_window(qtbot, forged) as window:
         keeping = window.keeping
-        assert keeping.notices.plain() == ""
+        assert "figures of it may be wrong" not in keeping.notices.plain()
         keeping.chain.look()
         until(qtbot, lambda: "figures of it may be wrong" in keeping.notices.plain())
         assert "of bed-7" in keeping.notices.plain()
         assert "by AB" in keeping.notices.plain()
         assert list(keeping.notices.ways) == ["restore", "salvage"]
         assert not keeping.backups.expire
+
+
+def test_a_bed_of_changed_rows_is_missing_and_named_and_the_others_stand(qtbot, forged):
+    """No figure of it is shown, for however short a time; the flags of the others are kept as ever."""
+    with open_window(qtbot, forged) as window:
+        assert list(window.feed.answers) == ["bed-3"]
+        assert "Missing from the ward: bed-7." in window.keeping.notices.plain()
+        assert list(window.keeping.notices.ways) == ["restore", "salvage"]
+        window.feed._all_wanted = True
+        window.feed._ask()
+        settled(qtbot, window)
+        assert "Missing from the ward: bed-7." in window.keeping.notices.plain()
 
 
 def test_a_sound_store_and_one_that_cannot_be_forged_are_left_in_peace(qtbot, tmp_path):
@@ -47,10 +59,11 @@ def test_a_sound_store_and_one_that_cannot_be_forged_are_left_in_peace(qtbot, tm
 
 
 def test_commands_say_it_before_they_give_figures(forged, capsys):
-    assert main(["--store", str(forged), "--zone", ZONE, "figures", "bed-7"]) == 0
+    assert main(["--store", str(forged), "--zone", ZONE, "figures", "bed-3"]) == 0
     err = capsys.readouterr().err
     assert "figures of it may be wrong" in err
     assert "of bed-7" in err
+    assert main(["--store", str(forged), "--zone", ZONE, "figures", "bed-7"]) == 1, "no figure of what was changed"
 
 
 def test_a_backup_of_a_damaged_store_is_kept_and_is_no_success(forged, tmp_path, capsys):
