@@ -56,6 +56,8 @@ LONG_VALUE = 20
 """Letters: a longer value stands under its name."""
 
 
+SHARE = 0.21
+"""Of the page's width, where that is more than the column needs."""
 MOST_WIDTH = 430
 """Pixels: with large text the panels keep their room, and the column scrolls."""
 
@@ -79,7 +81,11 @@ class SideColumn(QScrollArea):
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size; the next figures are drawn in it."""
         self._theme = theme
-        self.setFixedWidth(min(theme.px(332), MOST_WIDTH))
+        self.fit_page(0)
+
+    def fit_page(self, width: int) -> None:
+        """Take a share of a page so wide, so that sentences break less often on a large screen."""
+        self.setFixedWidth(min(max(self._theme.px(332), round(width * SHARE)), MOST_WIDTH))
 
     def facts(self) -> list[Fact]:
         """All facts from top to bottom."""

@@ -103,6 +103,7 @@ class EpisodeView(QWidget):
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
+        self.side.fit_page(self.width())
         self._make_room()
 
     def _hold_axis(self, *_place: int) -> None:
@@ -151,6 +152,7 @@ class EpisodeView(QWidget):
         self.readout.set_theme(theme)
         self._make_room()
         self.side.set_theme(theme)
+        self.side.fit_page(self.width())
         self.stack.set_theme(theme)
         if self._on is not None:
             self.show_episode(self._on, self._now)

@@ -118,3 +118,15 @@ def test_no_heading_of_the_column_is_cut(qtbot):
     for label in heads:
         right = label.mapTo(column.viewport(), label.rect().topRight()).x()
         assert right < column.viewport().width(), label.text()
+
+
+def test_the_column_grows_with_the_page_within_bounds(qtbot):
+    column = SideColumn(LIGHT)
+    qtbot.addWidget(column)
+    usual = column.width()
+    column.fit_page(1280)
+    assert column.width() == usual
+    column.fit_page(1920)
+    assert usual < column.width() < 430
+    column.fit_page(3840)
+    assert column.width() == 430
