@@ -18,7 +18,10 @@ def withdrawn_words(made: Withdrawn) -> str:
     entries = one if made.entries == 1 else many.format(count=f"{made.entries:,}")
     one, many = tr("1 span"), tr("{count} spans")
     spans = one if made.sample_spans == 1 else many.format(count=f"{made.sample_spans:,}")
-    told = tr("{name}: {entries} and {spans} of device samples withdrawn.")
+    if made.sample_spans:
+        told = tr("{name}: {entries} and {spans} of device samples withdrawn.")
+    else:
+        told = tr("{name}: {entries} withdrawn.")
     parts = [told.format(name=made.name, entries=entries, spans=spans)]
     if made.kept:
         parts.append(tr("{count} that somebody has corrected since stay as corrected.").format(count=made.kept))
