@@ -11,6 +11,7 @@ from app.operations.policy import in_force
 from core.judgement.entry_doubts import gas_doubts
 from core.judgement.order_doubts import order_doubts
 from core.judgement.second_value import second_values
+from core.judgement.unlike_last_gas import unlike_last_gas
 from core.record.channels import CHANNELS, Group
 from core.record.entries import Entry
 from core.record.episode import Episode, build_episode
@@ -33,7 +34,9 @@ def questions(store: Store, record: Episode, at: Instant, readings: Sequence[Rea
         settings = SettingsInForce(record)
         drawn_on = replace(settings.at(at), fio2=settings.fio2_drawn_on(at))
         sample = next((g for g in record.gases if g.at == at), None)
-        asked += gas_doubts(readings, drawn_on, in_force(store), sample)
+        policy = in_force(store)
+        asked += gas_doubts(readings, drawn_on, policy, sample)
+        asked += unlike_last_gas(readings, at, record, policy)
     asked += order_doubts(readings, at, record)
     asked += label_questions(store, record.key, readings)
     return tuple(asked)

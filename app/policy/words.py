@@ -120,6 +120,7 @@ SECTIONS: Mapping[str, str] = {
     "response": "Response to a change", "noise": "Measurement error between two values", "state": "States of a gas",
     "oxygen": "Oxygen", "freshness": "How old an input may be", "trend": "Trends", "leak": "Leak", "scores": "Scores",
     "levers": "Levers", "start_clocks": "Clocks of the shift figures",
+    "entry": "Questions at entry",
 }  # fmt: skip
 
 

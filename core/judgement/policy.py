@@ -16,6 +16,7 @@ import msgspec
 
 from core.judgement.policy_sections import (
     DueRule,
+    EntryRules,
     Freshness,
     LeakRules,
     Levers,
@@ -36,6 +37,11 @@ def _start_clocks() -> StartClocks:
     return shipped_policy().start_clocks
 
 
+def _entry() -> EntryRules:
+    """Likewise."""
+    return shipped_policy().entry
+
+
 class Policy(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=True):
     """A whole policy. `hash` names the text it was read from."""
 
@@ -53,6 +59,7 @@ class Policy(msgspec.Struct, frozen=True, forbid_unknown_fields=True, kw_only=Tr
     markers: dict[str, MarkerRule]
     due: dict[str, DueRule]
     start_clocks: StartClocks = msgspec.field(default_factory=_start_clocks)
+    entry: EntryRules = msgspec.field(default_factory=_entry)
     hash: str = ""
 
 

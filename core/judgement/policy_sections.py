@@ -157,6 +157,15 @@ class StartClocks(_Section, frozen=True, forbid_unknown_fields=True, kw_only=Tru
     arrival_to_start_min: Limit
 
 
+class EntryRules(_Section, frozen=True, forbid_unknown_fields=True, kw_only=True):
+    """When a gas at entry is so unlike the nearest of this patient that it is asked about; it judges nothing."""
+
+    unlike_ph_by: Limit
+    unlike_paco2_by_mmHg: Limit
+    unlike_bicarbonate_by_mmol_L: Limit
+    unlike_within_h: Limit
+
+
 class PressureLimit(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
     """A gas pressure in both printed forms, e.g. 45 mmHg and 6.0 kPa. The kPa form decides, in tenths."""
 

@@ -233,3 +233,14 @@ def _do(store: Store, step: str, last: entry.Recorded, n: int, *, standing: bool
         wanted = correction.CorrectionRequest("A", current, "x", str(25 + n), confirmed=True)
         return correction.correct(store, "AB", NOW, wanted).value
     return correction.withdraw(store, "AB", NOW, correction.WithdrawalRequest("A", current, "x")).value
+
+
+def test_a_gas_very_unlike_the_last_asks_whose_it_is(store: Store) -> None:
+    log(store, "01:00 ph 7.49 paco2 32")
+    shown = entry.preview(store, "AB", NOW, line("02:00 ph 7.10 paco2 95")).value
+    told = " ".join(sentence(q) for q in shown.questions)
+    assert "Very unlike the gas of 28-Mar-2026 01:00: pH 7.10, there 7.49; PaCO2 95 mmHg" in told
+    with pytest.raises(RecordError):
+        log(store, "02:00 ph 7.10 paco2 95")
+    assert log(store, "02:00 ph 7.10 paco2 95", confirmed=True).ids
+    assert not any(s.entry.doubt for s in store.episode("A").standing)
