@@ -1,7 +1,7 @@
 """Paints one lane of the ward view, and the heading over all lanes."""
 
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPen
+from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPen
 
 from app.chart.lane_layout import LaneGeometry, Placed
 from app.chart.marks import draw_card, fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
@@ -334,7 +334,7 @@ class LanePainter:
 
     def _state_word(self, lane: Lane, room: float) -> str:
         """The state's words, or the shorter ones: a value cut in the middle would be another value."""
-        font = self.theme.font(self.theme.type.caption, bold=True)
+        font = self._font_for(lane.state_word, room, bold=True)
         fits = QFontMetricsF(font).horizontalAdvance(lane.state_word) <= room
         return lane.state_word if fits or not lane.state_short else lane.state_short
 
@@ -356,6 +356,16 @@ class LanePainter:
         self._right_words(painter, lane.due_word, place, self._ink(lane), bold=lane.due_late)
 
     def _right_words(self, painter: QPainter, word: str, room: QRectF, ink: QColor, *, bold: bool = False) -> None:
-        painter.setFont(self.theme.font(self.theme.type.caption, bold=bold))
+        painter.setFont(self._font_for(word, room.width(), bold=bold))
         painter.setPen(ink)
         painter.drawText(room, _LEFT, fitted(painter, word, room.width()))
+
+    def _font_for(self, word: str, width: float, *, bold: bool) -> QFont:
+        """The caption's font; where text is large, one so much smaller that the words fit, but never as small as text
+        that nobody enlarged."""
+        theme, size = self.theme, self.theme.type.caption
+        font = theme.font(size, bold=bold)
+        while QFontMetricsF(font).horizontalAdvance(word) > width and theme.px(size - 1) >= theme.type.emphasis:
+            size -= 1
+            font = theme.font(size, bold=bold)
+        return font

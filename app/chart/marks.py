@@ -13,6 +13,8 @@ from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen, QPolygon
 from app.chart.shapes import Look
 from app.look.theme import RADIUS, GasState, Theme, Tier, Verdict
 
+ELLIPSIS = "\N{HORIZONTAL ELLIPSIS}"
+
 
 def solid_pen(colour: QColor | str, width: float = 1.0) -> QPen:
     """A plain pen with square joints that keep small shapes crisp."""
@@ -234,11 +236,23 @@ def whole_or_none(painter: QPainter, text: str, width: float) -> str:
 
 
 def fitted(painter: QPainter, text: str, width: float) -> str:
-    """The text if it fits, with an ellipsis if most of it does, else nothing: a stump says less than a mark."""
+    """The text if it fits, with an ellipsis if most of it does, else nothing: a stump says less than a mark.
+
+    A number is never cut: half of it would be another number.
+    """
     metrics = painter.fontMetrics()
     whole = metrics.horizontalAdvance(text)
     if whole <= width:
         return text
     if width < whole * 0.6:
         return ""
-    return metrics.elidedText(text, Qt.TextElideMode.ElideRight, int(width))
+    cut = metrics.elidedText(text, Qt.TextElideMode.ElideRight, int(width))
+    return _whole_numbers(text, cut)
+
+
+def _whole_numbers(text: str, cut: str) -> str:
+    """An elided text without its last word where that is a number whose end is missing."""
+    kept = cut.removesuffix(ELLIPSIS)
+    before, _, last = kept.rpartition(" ")
+    goes_on = len(kept) < len(text) and text[len(kept)] not in " ;,"
+    return f"{before} {ELLIPSIS}" if before and goes_on and any(x.isdigit() for x in last) else cut

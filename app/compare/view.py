@@ -126,6 +126,8 @@ class CompareView(QWidget):
         self.chart.show_comparison(made)
         self._number(keys)
         said = [self.tr("Space ticks, Enter opens. {least} to {most} episodes.").format(least=LEAST, most=MOST)]
+        if not self._ward:
+            said = [self.tr("No episode yet.")]
         if made.left_out:
             said.append(self.tr("Start not recorded: {labels}.").format(labels=", ".join(made.left_out)))
         self.said.setText(" ".join(said))

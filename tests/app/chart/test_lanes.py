@@ -4,11 +4,12 @@ from dataclasses import replace
 
 import pytest
 from PySide6.QtCore import QPoint, Qt
-from PySide6.QtGui import QColor, QImage, QPainter
+from PySide6.QtGui import QColor, QFontMetricsF, QImage, QPainter
 
 from app.chart.lane_layout import geometry_of, place_items
 from app.chart.lane_painter import LanePainter
 from app.chart.lanes import WardLanes
+from app.chart.marks import fitted
 from app.chart.shapes import LaneItem, LaneKind
 from app.look.theme import DARK, LIGHT
 from tests.app.chart.conftest import at
@@ -245,3 +246,31 @@ def test_words_of_settings_keep_their_contrast_while_the_mask_is_off(qtbot, lane
     foot = image.copy(0, round(g.words), 1248, round(g.lane - g.words))
     shades = [foot.pixelColor(x, y).lightness() for x in range(foot.width()) for y in range(foot.height())]
     assert min(shades) <= QColor(LIGHT.colours.ink_quiet).lightness() + 25
+
+
+@pytest.mark.parametrize("width", range(110, 230, 3))
+def test_no_number_is_cut_in_the_middle(qtbot, width):
+    """Half of a value would be another value."""
+    image = QImage(10, 10, QImage.Format.Format_RGB32)
+    painter = QPainter(image)
+    painter.setFont(LIGHT.font(LIGHT.type.caption, bold=True))
+    whole = "P/F 236 mmHg; acidotic, pH 7.31"
+    told = fitted(painter, whole, width)
+    painter.end()
+    kept = told.removesuffix("\N{HORIZONTAL ELLIPSIS}").rstrip()
+    assert whole.startswith(kept)
+    words = whole.replace(";", "").replace(",", "").split()
+    assert all(part.strip(";,") in words for part in kept.split() if any(x.isdigit() for x in part))
+
+
+def test_with_large_text_words_shrink_before_they_are_cut(qtbot, lanes_spec):
+    theme = LIGHT.scaled(2.0)
+    g = geometry_of(lanes_spec, theme, 1236, 500)
+    drawn = LanePainter(lanes_spec, theme, g, [])
+    usual = theme.px(theme.type.caption)
+    assert drawn._font_for("short", 400, bold=True).pixelSize() == usual
+    smaller = drawn._font_for("Repeat blood gas overdue 11 h 35 min", 440, bold=True)
+    assert theme.type.emphasis <= smaller.pixelSize() < usual
+    assert QFontMetricsF(smaller).horizontalAdvance("Repeat blood gas overdue 11 h 35 min") <= 440
+    plain = LanePainter(lanes_spec, LIGHT, geometry_of(lanes_spec, LIGHT, 1236, 500), [])
+    assert plain._font_for("x" * 200, 100, bold=True).pixelSize() == LIGHT.type.caption
