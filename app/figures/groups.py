@@ -10,6 +10,7 @@ from app.figures.rows import FigureGroup, FigureRow, RowInput, RowMaker, doubts_
 from app.figures.trends import trend_rows
 from app.figures.values import input_name, value_text
 from app.look import formats
+from app.telling.headline import beside_pf, gas_state_word, pf_word
 from app.words import Reader
 from core.judgement.derived import DerivedFigure, FigureInput, OxygenationFigure
 from core.judgement.gas_reading import GasReading, read
@@ -55,7 +56,7 @@ def _gas_rows(f: EpisodeFigures, gas: GasFigure | None, make: RowMaker) -> Itera
     if gas is not None:
         age = f.profile.get("age")
         reading = read(gas, age if isinstance(age, float) else None)
-        yield class_row(gas, reading, make)
+        yield class_row(f, gas, reading, make)
         yield from _of_the_rules(gas, reading, make)
     if venous is not None and venous.rule_out is not None:
         inputs = {"paco2": FigureInput(venous.paco2_mmHg, venous.at)}
@@ -63,13 +64,13 @@ def _gas_rows(f: EpisodeFigures, gas: GasFigure | None, make: RowMaker) -> Itera
                         make.doubted.get(venous.at, ""), inputs=make.inputs(inputs), wide=True)  # fmt: skip
 
 
-def class_row(gas: GasFigure, reading: GasReading, make: RowMaker) -> FigureRow:
+def class_row(f: EpisodeFigures, gas: GasFigure, reading: GasReading, make: RowMaker) -> FigureRow:
     """What a gas says in plain words, with the reasoning step by step."""
     text = make.say(reading.classification).rstrip(".")
-    state = gas.state if gas.state is not None else ""
+    state = beside_pf(pf_word(f, gas, make.reader.gas_unit, make.reader.zone), gas_state_word(f, gas))
     why = "" if text else make.say(reading.classification_reason)
     inputs = {"ph": gas.ph, "paco2": gas.paco2_mmHg, "hco3": gas.hco3_calculated_mmol_L}
-    notes = [make.tr("State: {state}").format(state=make.tr(state))] if state else []
+    notes = [make.tr("State: {state}").format(state=state)] if gas.state is not None else []
     if gas.site_assumed:
         notes.append(make.say(Message("gas.site_assumed")).rstrip("."))
     if gas.off_support:

@@ -95,7 +95,7 @@ def _over(leak: LeakFigure, make: RowMaker) -> FigureRow:
     minutes = leak.minutes_over_limit
     value = "" if minutes is None else formats.minutes(minutes)
     why = "" if value else make.say(leak.reasons.get("minutes_over_limit")) or make.tr("Not known")
-    name, counted = make.tr("Time over the leak limit"), ()
+    name, counted = make.tr("Time over the leak limit"), tuple[str, ...]()
     if value and leak.counted is not None:
         first, last = (make.reader.time(at) for at in leak.counted)
         counted = (make.tr("Counted from {first} to {last} only").format(first=first, last=last),)

@@ -9,6 +9,7 @@ from app.look import formats
 from app.telling.presumed import presumed_word
 from app.telling.taken import taken_words
 from app.words import Reader, sentence
+from app.words.arm_words import arm_words, arms_agree
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
 from app.words.verdict_loss import with_loss
@@ -211,8 +212,7 @@ class FigureLines:
             why = " ".join(sentence(m, self.reader) for m in r.why)
             return f"{self.tr(r.headline)}. {why}".rstrip(". ") + "."
         text = f"{self.headline(r, judged)}: {self.deltas(judged, with_state=not brief)}"
-        agree = {judged.co2_arm, judged.oxygen_arm} - {None} == {judged.verdict}
-        arms = "" if brief and agree else self.arms(judged)
+        arms = "" if brief and arms_agree(judged) else arm_words(judged, self.reader)
         text = f"{text} ({arms})." if arms else f"{text}."
         return f"{text} {self.loss(judged)}".rstrip()
 
@@ -262,11 +262,6 @@ class FigureLines:
         when = f"{self.tr('after')} {formats.minutes(g.minutes)}{', ' + timing if timing else ''}"
         state = f", {self.tr('gas')} {self.state(g.state, g.at)}" if g.state and with_state else ""
         return f"{', '.join(parts) or self.tr('no difference known')} {when}{state}"
-
-    def arms(self, g: JudgedGas) -> str:
-        """Both arms, each with its verdict."""
-        found = ((self.tr("CO2"), g.co2_arm), (self.tr("oxygen"), g.oxygen_arm))
-        return ", ".join(f"{name} {self.tr(verdict)}" for name, verdict in found if verdict)
 
     def flag_head(self, f: FlagFigure) -> str:
         """A flag's name with its tier, since when, and what became of it."""

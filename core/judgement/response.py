@@ -188,6 +188,7 @@ class _Judge:
             verdict, arms.sure(co2.verdict, base.gas, gas), arms.sure(oxygen.verdict, base.gas, gas), gas.state, True,
             since, also, (*unsure, *co2.why, *oxygen.why, *_cautions(base, gas, when, since, also),
                           *why.doubts(base.gas, gas)),
+            co2_at_issue=active or arms.acute_hypercapnia(gas, self.ctx.policy),
         )  # fmt: skip
 
     def _not_attributable(self, index: int, base: Baseline, gas: GasFigure) -> JudgedGas:

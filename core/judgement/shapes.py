@@ -156,6 +156,9 @@ class JudgedGas:
     also_changed: tuple[Step, ...] = ()
     why: tuple[Message, ...] = ()
     """What was compared, by how much, against which noise; or why not judged."""
+    co2_at_issue: bool = True
+    """Whether CO2 was or is at issue: acute hypercapnia at the baseline or in this gas. Elsewhere a PaCO2 that moves
+    is told as moving, never as CO2 better or worse."""
 
 
 @dataclass(frozen=True, slots=True)

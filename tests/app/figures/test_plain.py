@@ -54,3 +54,11 @@ def test_a_star_in_the_text_has_its_meaning_at_the_end():
     assert starred
     assert all("*, since" in text for text in starred)
     assert all(text.splitlines()[-1].endswith("to be confirmed locally") for text in starred)
+
+
+def test_what_never_was_acidotic_is_not_called_resolved():
+    """Beside the newest gas too: its P/F first, where oxygen is what fails."""
+    f = next(f for f in sample_ward() if f.label == "Bay A 1")
+    text = episode_text(f, Reader(ZONE))
+    assert "State: P/F 107 mmHg; not acidotic" in text.split("Figures: latest gas")[1]
+    assert "resolved" not in text
