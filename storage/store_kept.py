@@ -79,7 +79,7 @@ class StoreKept(StoreProven):
         """Every policy that was put in force up to a sequence, the newest first."""
         with self._opened.database.read() as connection:
             if self._held(connection):
-                proven_reading.check_policies(connection)
+                proven_reading.check_policy(connection, _ALL if head is None else head)
             return documents.policies(connection, _ALL if head is None else head)
 
     def put_policy(self, text: str, hash: str, by: str, now: Instant) -> Receipt:

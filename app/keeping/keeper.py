@@ -158,7 +158,9 @@ class Keeping(QObject):
         name = session.store_path.name
         if self.lock.is_locked:
             return self.tr("Luffmark - locked")
-        if session.is_demo or session.encrypted is not False:
+        if session.is_demo:
+            return self.tr("Sample shift: invented, nothing is kept - Luffmark")
+        if session.encrypted is not False:
             return self.tr("{store} - Luffmark").format(store=name)
         return self.tr("{store} (not encrypted) - Luffmark").format(store=name)
 

@@ -8,6 +8,7 @@ from pathlib import Path
 import pytest
 
 from app.operations import episode_shelf, figures, policy
+from core.judgement.policy import policy_hash, shipped_text
 from core.record.entries import NewEntry
 from core.record.instant import MINUTE
 from storage.errors import StoreError
@@ -147,3 +148,14 @@ def test_what_an_older_program_wrote_between_lets_the_proofs_go_and_an_opening_m
         store.append([new], by="AB", operation="log", now=LATER)
         assert store.proves_rows
         assert store.verify() == ()
+
+
+def test_an_older_policy_that_is_damaged_takes_no_figure_away(path: Path) -> None:
+    with Store.open(path) as store:
+        text = shipped_text() + "\n# of this ward"
+        store.put_policy(text, policy_hash(text), "AB", LATER)
+    truth = told(path)
+    tamper(path, "UPDATE policy SET text = replace(text, '7.25', '7.15') WHERE seq = 1")
+    assert told(path) == truth
+    with Store.open(path, read_only=True) as store:
+        assert policy.found(store).passed_over == ()

@@ -47,5 +47,6 @@ def test_the_sample_shift_opens_from_it_and_its_store_goes_with_it(qtbot):
     assert len(window.pages.ward.shown_keys()) >= 9
     assert window.model.session.is_demo
     assert "Pretended" in window.top.moment.text()
+    assert window.windowTitle() == "Sample shift: invented, nothing is kept - Luffmark"
     window.close()
     assert not folder.exists()
