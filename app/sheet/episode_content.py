@@ -39,7 +39,7 @@ class EpisodeWriter(SheetWriter):
             shift_chart(record, f, (s.start, self._chart_end(s)), s.target, self._reader), gas_rows(s, lines),
             tuple(self._flag(x) for x in (*shown, *dict.fromkeys(other))),
             tuple(self._lines.due(d) for d in s.due), tuple(self._care(s)),
-            tuple(f"{self._moment(t.at)} {formats.told_words(t.words or 'somebody')}" for t in s.told),
+            self._calls(s),
             tuple(self._plan(f)),
             str(f.profile.get("handover_remark") or ""), tuple(self._to_check(s)), tuple(self._levers(f)),
             since_head(self._h.handed, self._reader), since_lines(self._h.since[s.episode], lines),

@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app.look import formats
-from app.look.formats import told_words
 from app.sheet.due_lines import due_short, gases_due, others_due, skin_line
 from app.sheet.shapes import WardPage, WardRow
 from app.sheet.since_lines import compared_with
@@ -75,10 +74,7 @@ class WardWriter(SheetWriter):
         if not escalate and not any(d.what in GAS and d.state == "overdue" for d in s.due):
             return ""
         plan = str(s.now.profile.get("plan") or tr(formats.ABSENT)).rstrip(".")
-        newest = s.told[-1] if s.told else None
-        called = tr(formats.ABSENT)
-        if newest is not None:
-            called = f"{self._clock(newest.at)} {told_words(newest.words or tr('somebody'))}"
+        called = self._calls(s)[-1] if s.told or s.told_before else tr(formats.ABSENT)
         return tr("Plan: {plan}. Told: {told}.").format(plan=plan, told=called.rstrip("."))
 
     def _support_short(self, f: EpisodeFigures) -> str:

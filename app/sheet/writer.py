@@ -14,7 +14,7 @@ from app.telling.headline import ever_acidotic
 from app.telling.language import in_language as tr
 from app.words import Reader
 from app.words.figure_lines import FigureLines
-from core.figures.shift import ShiftFigures
+from core.figures.shift import Event, ShiftFigures
 from core.judgement.shapes import EpisodeFigures, FlagFigure
 from core.record.instant import MINUTE
 
@@ -85,11 +85,21 @@ class SheetWriter:
         name = starred(marker_name(f.marker, self._reader), f.sure)
         return tr("{flag}, since {moment}").format(flag=name, moment=self._moment(f.since))
 
+    def _calls(self, s: ShiftFigures) -> tuple[str, ...]:
+        """Every call and its answer, those of earlier shifts that may still be waited for first."""
+        before = (tr("{moment} (before this shift) {call}").format(moment=self._moment(e.at), call=_call(e))
+                  for e in s.told_before)  # fmt: skip
+        return (*before, *(f"{self._moment(e.at)} {_call(e)}" for e in s.told))
+
     def _clock(self, at: int) -> str:
         return formats.clock(at, self._reader.zone)
 
     def _moment(self, at: int) -> str:
         return self._reader.time(at)
+
+
+def _call(told: Event) -> str:
+    return formats.told_words(told.words or tr("somebody"))
 
 
 def quiet_since(s: ShiftFigures) -> int | None:

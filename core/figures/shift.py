@@ -25,6 +25,7 @@ DUE_AHEAD: Final = 4 * HOUR
 """Due items of this long after the shift's end are handed over."""
 OPEN_FLAGS: Final = frozenset({"raised", "seen"})
 _OPEN_DUE: Final = frozenset({"open", "soon", "overdue", "awaiting result"})
+_STRONG: Final = frozenset({"escalate", "concern"})
 _TOLD: Final = "told"
 _NOT_EVENTS: Final = frozenset({_TOLD, "gas_sent"})
 
@@ -68,6 +69,8 @@ class ShiftFigures:
     """The leak of the shift itself; that of `now` is of the trend's span, which is another."""
     events: tuple[Event, ...] = ()
     told: tuple[Event, ...] = ()
+    told_before: tuple[Event, ...] = ()
+    """Calls of earlier shifts about what still stands: who was told then may still be waited for."""
     recorded_late: int = 0
     """Typed entries of the shift that were recorded more than an hour after they happened; a file's are none."""
     began: bool = False
@@ -142,6 +145,7 @@ def episode_shift(episode: Episode, start: Instant, end: Instant, policy: Policy
         hours_on_mask=support.hours_on_mask(start, end),
         leak=leak_figure(ctx, since=start + 1),
         events=_events(cut, start, end), told=_events_of(cut, _TOLD, start, end),
+        told_before=_told_before(cut, now, start),
         recorded_late=_recorded_late(cut, start, end),
         began=support.start is not None and _inside(support.start, start, end),
         ended=support.end is not None and _inside(support.end, start, end),
@@ -194,6 +198,16 @@ def _events_of(episode: Episode, channel: str, start: Instant, end: Instant) -> 
             by = episode.standing[int(origin)].entry.by if 0 <= origin < len(episode.standing) else ""
             made.append(Event(int(at), channel, text, by))
     return tuple(made)
+
+
+def _told_before(episode: Episode, now: EpisodeFigures, start: Instant) -> tuple[Event, ...]:
+    """The calls before a shift, made since the earliest of its open escalations and concerns began; where there is
+    none of those, the newest call. Nothing where no such flag is open."""
+    standing = [f.since for f in now.flags if f.state in OPEN_FLAGS and f.tier in _STRONG]
+    if not standing:
+        return ()
+    earlier = _events_of(episode, _TOLD, episode.first_at - 1 if episode.first_at is not None else start, start)
+    return tuple(e for e in earlier if e.at >= min(standing)) or earlier[-1:]
 
 
 def _recorded_late(episode: Episode, start: Instant, end: Instant) -> int:

@@ -317,3 +317,14 @@ def test_the_wards_page_names_an_episode_of_which_nothing_was_logged_for_long(ni
 
 def test_a_difference_of_nothing_is_no_value(content: SheetContent) -> None:
     assert "P/F 0 mmHg" not in handover_text(content)
+
+
+def test_the_next_shift_reads_who_was_called_before_it_about_a_flag_that_stands(night_store: Store) -> None:
+    """Bed 4: escalated since 04:18, the registrar called at 04:37, the shift changed at 05:00."""
+    request = operations.HandoverRequest(parse("2026-03-28T05:00:00Z"), demo.demo_now())
+    made = operations.prepare(night_store, "AB", demo.demo_now(), request).value
+    content = sheet_content(made, Reader(demo.ZONE))
+    row = next(r for r in content.ward.rows if r.label == "Bed 4")
+    assert row.action.endswith("Told: 04:37 (before this shift) medical registrar. Answer: busy, will come.")
+    page = next(p for p in content.episodes if p.label == "Bed 4")
+    assert page.told == ("04:37 (before this shift) medical registrar. Answer: busy, will come",)

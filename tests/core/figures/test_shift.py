@@ -138,3 +138,29 @@ def test_leak_over_its_limit_is_that_of_the_whole_shift() -> None:
     assert found.now.leak.minutes_over_limit == 0
     assert found.leak.minutes_over_limit == 29, "19:31 to 20:00: the minute of the start is the shift's before"
     assert found.leak.counted == (begin + MINUTE, end)
+
+
+CALLED = """
+-19:00 bpap-st 20/5 28
+-19:30 told outreach, will look in
+-20:30 site arterial ph 7.19 paco2 90
+-20:40 told registrar, busy
+-20:50 gcs 15
+"""
+
+
+def test_a_call_before_the_shift_about_what_still_stands_is_handed_over() -> None:
+    found = episode_shift(episode(CALLED), moment("-21:00"), moment("-23:00"), POLICY)
+    assert any(f.tier == "escalate" for f in found.flags_open)
+    assert found.told == ()
+    assert [e.at for e in found.told_before] == [moment("-20:40")], "not who was told before it began"
+    own = episode_shift(episode(CALLED), moment("-20:35"), moment("-23:00"), POLICY)
+    assert [e.at for e in own.told] == [moment("-20:40")]
+    assert [e.at for e in own.told_before] == [moment("-19:30")], "the newest of before, where none is about it"
+
+
+def test_a_call_is_not_carried_on_where_nothing_stands() -> None:
+    well = CALLED.replace("ph 7.19 paco2 90", "ph 7.40 paco2 44")
+    found = episode_shift(episode(well), moment("-21:00"), moment("-21:30"), POLICY)
+    assert not any(f.tier != "remark" for f in found.flags_open)
+    assert found.told_before == ()
