@@ -53,8 +53,9 @@ class FileDeeds(MakingDeeds):
 
         TakenDialog(self.model, self.window.reader, self.window.theme, self.window).open()
 
-    def _episodes(self) -> tuple[str, ...]:
-        return tuple(self.window.feed.answers) if self.window.feed is not None else ()
+    def _episodes(self) -> dict[str, str]:
+        feed = self.window.feed
+        return {key: answer.record.label for key, answer in feed.answers.items()} if feed is not None else {}
 
     def do_save_handover(self) -> None:
         """Ask where, write the handover sheet as PDF."""

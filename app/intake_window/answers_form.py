@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping as Map
 from collections.abc import Sequence
 from dataclasses import replace
 from zoneinfo import available_timezones
@@ -10,6 +11,7 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QComboBox, QDoubleSpinBox, QFormLayout, QLabel, QWidget
 
 from app.intake_window.column_table import NoWheel
+from app.intake_window.episode_choices import choices, chosen_or_typed
 from app.look.theme import Theme
 from core.record.channels import LEAK_DEFINITIONS
 from storage.intake.mapping import DECIMALS, ORDERS, WRITERS, Mapping, channels_of
@@ -78,7 +80,7 @@ class AnswersForm(QWidget):
         self,
         mapping: Mapping,
         header: Sequence[str],
-        episodes: Sequence[str],
+        episodes: Map[str, str],
         episode: str,
         *,
         has_offsets: bool,
@@ -104,7 +106,7 @@ class AnswersForm(QWidget):
         _fill(self.repeated, twice, use.repeated)
         zones = [(z, z) for z in sorted(available_timezones())]
         _fill(self.zone, [(self.tr("each time has its offset") if has_offsets else "?", ""), *zones], use.zone)
-        of = [("?", ""), *((e, e) for e in episodes)]
+        of = [("?", ""), *choices(episodes)]
         of += [(self.tr("column {name}").format(name=name), _COLUMN + name) for name in header]
         _fill(self.episode, of, _COLUMN + mapping.episode_column if mapping.episode_column else episode)
         if episode and not mapping.episode_column and self.episode.currentData() != episode:
@@ -134,7 +136,7 @@ class AnswersForm(QWidget):
         """The mapping with the answers of the form."""
         time = replace(mapping.time, date=_data(self.time), clock=_data(self.clock), order=_data(self.order),
                        zone=self._zone(), repeated=_data(self.repeated))  # fmt: skip
-        of = _data(self.episode)
+        of = chosen_or_typed(self.episode)
         return replace(mapping, time=time, decimal=_data(self.decimal), written_by=_data(self.writer),
                        by_column=_data(self.person), leak_definition=_data(self.leak),
                        episode_column=of.removeprefix(_COLUMN) if of.startswith(_COLUMN) else "")  # fmt: skip
@@ -142,7 +144,7 @@ class AnswersForm(QWidget):
     @property
     def episode_key(self) -> str:
         """The one episode of the whole file; empty where a column names it, or nothing does."""
-        of = _data(self.episode)
+        of = chosen_or_typed(self.episode)
         return "" if of.startswith(_COLUMN) or of == "?" else of
 
     def _zone(self) -> str:
@@ -162,7 +164,4 @@ def _fill(box: QComboBox, choices: Sequence[tuple[str, str]], chosen: str) -> No
 
 
 def _data(box: QComboBox) -> str:
-    """What is chosen, or what was typed into a box that takes text."""
-    if box.isEditable() and box.currentText() != box.itemText(box.currentIndex()):
-        return box.currentText().strip()
     return str(box.currentData() or "")

@@ -5,7 +5,7 @@ What a person answered for one table is proposed for the next of the same column
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -22,7 +22,9 @@ if TYPE_CHECKING:
 class FilesInTurn(QObject):
     """Lives until the last file's dialog is closed. Leaving one file goes on to the next."""
 
-    def __init__(self, model: SessionModel, paths: Sequence[Path], episodes: tuple[str, ...], window: Shell) -> None:
+    def __init__(
+        self, model: SessionModel, paths: Sequence[Path], episodes: Mapping[str, str], window: Shell
+    ) -> None:
         super().__init__(window)
         self._model, self._window, self._episodes = model, window, episodes
         self._waiting, self._count = list(paths), len(paths)

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
 
+from app.intake_window.episode_choices import choices, chosen_or_typed
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
 
@@ -29,7 +30,7 @@ class PatientRows(QWidget):
         self.buttons: dict[str, QPushButton] = {}
         self.hide()
 
-    def show_unknown(self, identifiers: Sequence[str], episodes: Sequence[str]) -> None:
+    def show_unknown(self, identifiers: Sequence[str], episodes: Mapping[str, str]) -> None:
         """Ask for identifiers; none hides the rows. Nothing is chosen beforehand."""
         while self._grid.count():
             item = self._grid.takeAt(0)
@@ -42,13 +43,14 @@ class PatientRows(QWidget):
             self._add(row, text, episodes)
         self.setVisible(bool(identifiers))
 
-    def _add(self, row: int, text: str, episodes: Sequence[str]) -> None:
+    def _add(self, row: int, text: str, episodes: Mapping[str, str]) -> None:
         label = plain_label(self.tr("Patient {identifier} is").format(identifier=text))
         box, button = QComboBox(), QPushButton(self.tr("Confirm"))
         box.setEditable(True)
         box.setInsertPolicy(QComboBox.InsertPolicy.NoInsert)
         box.setAccessibleName(label.text())
-        box.addItems(["", *episodes])
+        for word, key in (("", ""), *choices(episodes)):
+            box.addItem(word, key)
         line = box.lineEdit()
         if line is not None:
             line.setPlaceholderText(self.tr("an episode"))
@@ -60,6 +62,6 @@ class PatientRows(QWidget):
 
     def _confirm(self) -> None:
         text = next(t for t, b in self.buttons.items() if b is self.sender())
-        episode = self.boxes[text].currentText().strip()
+        episode = chosen_or_typed(self.boxes[text])
         if episode:
             self.said.emit(text, episode)

@@ -28,8 +28,8 @@ class ReadRequest:
     `mapping` is how a table is read (`mapping_name`: one that is kept; neither: one recognised by its header).
     `episode` is whose the file is, where it does not say; `patients` gives single identifiers their episode.
     `zone` is for times without an offset; `clock_shift_s` is added to a device's times. `said` is how a table is
-    written; what it leaves open the mapping says, and then what is found. `episodes` are offered to a
-    person who has to say whose an identifier is.
+    written; what it leaves open the mapping says, and then what is found. `episodes`, by key what the
+    ward calls them, are offered to a person who has to say whose an identifier is.
     """
 
     path: Path
@@ -41,7 +41,7 @@ class ReadRequest:
     clock_shift_s: float = 0.0
     leak_definition: str = ""
     said: Writing = AS_FOUND
-    episodes: tuple[str, ...] = ()
+    episodes: Map[str, str] = field(default_factory=dict)
 
 
 @dataclass(frozen=True, slots=True)

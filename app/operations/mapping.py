@@ -46,14 +46,15 @@ class LookRequest:
 class Looked:
     """What a table shows: its beginning, what is proposed, the mapping that was recognised, all that are kept.
 
-    `said` is how it was opened, by the person or the mapping; `several` are mappings that fit and read it otherwise.
+    `episodes` are what the ward calls those that go on, by key. `said` is how it was opened, by the person or the
+    mapping; `several` are mappings that fit and read it otherwise.
     """
 
     table: Table
     proposal: Proposal
     recognised: Mapping | None
     kept: Map[str, Mapping]
-    episodes: tuple[str, ...]
+    episodes: Map[str, str]
     said: Writing = AS_FOUND
     several: tuple[str, ...] = ()
 
@@ -94,9 +95,10 @@ def _opened(request: LookRequest, kept: Map[str, Mapping]) -> Recognised:
     return recognise(request.path, kept, request.said)
 
 
-def _open_episodes(store: Store) -> tuple[str, ...]:
-    """The episodes that go on; one of which nothing stands is nobody's."""
-    return tuple(key for key in store.open_episode_keys() if not shelf_of(store).get(store, key).is_empty)
+def _open_episodes(store: Store) -> dict[str, str]:
+    """The episodes that go on, by key what the ward calls them; one of which nothing stands is nobody's."""
+    found = (shelf_of(store).get(store, key) for key in store.open_episode_keys())
+    return {episode.key: episode.label for episode in found if not episode.is_empty}
 
 
 def keep(store: Store, who: str, now: Instant, request: Mapping) -> Outcome[str]:
