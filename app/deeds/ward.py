@@ -48,7 +48,7 @@ class WardDeeds(Doer):
         self.pages.ward.show_all()
 
     def do_filter_not_responding(self) -> None:
-        """Only those with an open flag of concern or more."""
+        """Only those that do not respond, or with an open flag of concern or more."""
         self._show(Shown.NOT_RESPONDING)
 
     def do_filter_due(self) -> None:

@@ -33,7 +33,8 @@ class Shown(StrEnum):
     """Which lanes are shown."""
 
     ALL = "all"
-    NOT_RESPONDING = "not responding"
+    NOT_RESPONDING = "not responding or flagged"
+    """By its gases, or by an open flag of concern or more: a flagged bed that stands as better is not hidden."""
     DUE = "due soon"
 
 

@@ -79,7 +79,7 @@ class WardView(QWidget):
             self.tr("Show"),
             (
                 (Shown.ALL, self.tr("all")),
-                (Shown.NOT_RESPONDING, self.tr("not responding")),
+                (Shown.NOT_RESPONDING, self.tr("not responding or flagged")),
                 (Shown.DUE, self.tr("due soon")),
             ),
         )

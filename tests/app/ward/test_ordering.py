@@ -2,10 +2,15 @@
 
 from dataclasses import replace
 
+from app.telling.headline import headline
 from app.ward.ordering import Order, Shown, first_to_see, natural, next_due, ordered, shown
+from core.figures.episode_figures import episode_figures
+from core.judgement.policy import shipped_policy
 from core.judgement.shapes import Concern, DueFigure, EpisodeFigures, SupportFigure
+from core.record.instant import HOUR
 from core.record.message import Message
 from tests.support.invented_ward import at, ward
+from tests.support.night_check import END, night
 from tests.support.sample_ward import sample_ward
 
 FIGURES = [b.figures for b in ward()]
@@ -92,3 +97,32 @@ def test_no_resolved_bed_without_a_concern_stands_above_an_acidotic_one():
     quiet = [f for f in running if f.concern.rank >= 2]
     sick = [f.now.state in ("severe", "acidotic") for f in quiet]
     assert sick == sorted(sick, reverse=True)
+
+
+def test_not_responding_or_flagged_is_just_that():
+    """At each hour of the sample night: in by an open flag of concern, or by what the lane itself says; else out."""
+    poor = ("worse", "mixed", "gain lost")
+    seen = set()
+    for hours in range(8):
+        ward_then = [episode_figures(e, END - hours * HOUR, shipped_policy()) for e in night().values()]
+        kept = {f.episode for f in shown(ward_then, Shown.NOT_RESPONDING)}
+        for f in (f for f in ward_then if f.support.ended_at is None):
+            flagged = any(g.ended_at is None and g.settled_at is None and g.tier != "remark" for g in f.flags)
+            told = headline(f)
+            unmoved = told is not None and "no clear change" in told.short  # by the state: a test of its own
+            bad = told is not None and told.short.startswith(poor) and not unmoved
+            if flagged or bad:
+                assert f.episode in kept, (f.label, f.as_of)
+            elif not unmoved:
+                assert f.episode not in kept, (f.label, f.as_of, told)
+            seen.add((flagged, bad, unmoved))
+    assert {(True, False, False), (False, False, False)} <= seen
+
+
+def test_no_clear_change_is_responding_only_where_an_acidosis_resolved():
+    f = next(f for f in sample_ward() if f.label == "Emergency 3")
+    assert headline(f).verdict.value == "no clear change"
+    resolved = [replace(f, flags=(), now=replace(f.now, ever_acidotic=True))]
+    assert not shown(resolved, Shown.NOT_RESPONDING)
+    unchanged = replace(f, flags=(), responses=tuple(replace(r, state="acidotic") for r in f.responses))
+    assert shown([unchanged], Shown.NOT_RESPONDING)
