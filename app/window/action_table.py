@@ -162,7 +162,7 @@ DEEDS: Final = (
     Deed("filter_all", "ward", QT_TRANSLATE_NOOP("action", "Show all"), ("Alt+4",),
          QT_TRANSLATE_NOOP("action", "Every episode of the shift."), parted=True),
     Deed("filter_not_responding", "ward", QT_TRANSLATE_NOOP("action", "Show not responding or flagged"), ("Alt+5",),
-         QT_TRANSLATE_NOOP("action", "Worse, mixed, a gain lost or nothing changed; and every open flag of concern.")),
+         QT_TRANSLATE_NOOP("action", "Worse, mixed, gain lost or nothing changed; and every open flag of concern.")),
     Deed("filter_due", "ward", QT_TRANSLATE_NOOP("action", "Show due soon"), ("Alt+6",),
          QT_TRANSLATE_NOOP("action", "Only episodes with something due soon or overdue.")),
     Deed("find_episode", "ward", QT_TRANSLATE_NOOP("action", "Find an episode"), ("Ctrl+F",),
