@@ -10,6 +10,8 @@ from app import demo
 from app.operations import handover as operations
 from app.operations.handover import Handover
 from app.sheet.content import sheet_content
+from app.sheet.paper import PAPERS
+from app.sheet.printing import pdf_bytes
 from app.sheet.shapes import SheetContent
 from app.words import Reader
 from core.record.instant import parse
@@ -34,6 +36,19 @@ def night(night_store: Store) -> Handover:
 @pytest.fixture(scope="session")
 def content(night: Handover) -> SheetContent:
     return sheet_content(night, Reader(demo.ZONE), given_by="A. Giver")
+
+
+@pytest.fixture(scope="session", params=sorted(PAPERS))
+def printed(request: pytest.FixtureRequest, content: SheetContent, qapp: QApplication) -> tuple[str, bytes]:
+    """The sample night on each paper: its name, and the bytes of the PDF."""
+    return request.param, pdf_bytes(content, request.param)[0]
+
+
+@pytest.fixture
+def own(tmp_path: Path) -> Iterator[Store]:
+    """The sample night in a store that a test may write to."""
+    with Store.open(sample_night(tmp_path)) as store:
+        yield store
 
 
 @pytest.fixture

@@ -10,21 +10,13 @@ from app.sheet.gas_table import HEADINGS
 from app.sheet.paper import PAPERS
 from app.telling.caution_texts import CAUTION
 from core.record.message import RecordError
-
-
-def pages_of(data: bytes) -> list[str]:
-    return [flat(page.extract_text()) for page in PdfReader(BytesIO(data)).pages]
-
-
-def flat(text: str) -> str:
-    """Without its spaces: a reader of PDFs puts some where none was."""
-    return "".join(text.split())
+from tests.support.pdf_text import flat, flat_pages
 
 
 @pytest.mark.parametrize("paper", sorted(PAPERS))
 def test_every_question_stands_on_the_form(qapp, paper):
     data, count = blank_bytes(paper, episodes=2)
-    ward, one, two = pages_of(data)
+    ward, one, two = flat_pages(data)
     assert count == 3
     for asked in ("Shift from", "See first", "All episodes, in order of concern", "Due in the next 4 h", "Given by"):
         assert flat(asked) in ward

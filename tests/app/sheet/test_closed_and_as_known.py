@@ -2,12 +2,9 @@
 
 import re
 import shutil
-from collections.abc import Iterator
-from io import BytesIO
 from pathlib import Path
 
 import pytest
-from pypdf import PdfReader
 
 from app import demo
 from app.operations import correction, entry, episode
@@ -21,17 +18,10 @@ from core.record.instant import HOUR, MINUTE, parse
 from storage.errors import StoreError
 from storage.store import Store
 from tests.app.sheet.conftest import START
+from tests.support.pdf_text import page_texts
 
 KNOWN = parse("2026-03-28T02:40:00Z")
 NOW = demo.demo_now()
-
-
-@pytest.fixture
-def own(night_store: Store, tmp_path: Path) -> Iterator[Store]:
-    night_store.backup(tmp_path / "copy")
-    Store.restore(tmp_path / "copy", tmp_path / "own.luff")
-    with Store.open(tmp_path / "own.luff") as store:
-        yield store
 
 
 def gather(store: Store, as_known_at=None, end=NOW):
@@ -47,7 +37,7 @@ def close(store: Store, given="AB", taken="CD") -> tuple[str, bytes]:
 
 
 def texts(data: bytes) -> list[str]:
-    return [" ".join(page.extract_text().split()) for page in PdfReader(BytesIO(data)).pages]
+    return [" ".join(text.split()) for text in page_texts(data)]
 
 
 def test_a_closed_handover_never_changes(qapp, own: Store, tmp_path: Path) -> None:

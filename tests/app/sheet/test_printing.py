@@ -9,7 +9,6 @@ from pathlib import Path
 
 import pytest
 from pypdf import PdfReader
-from PySide6.QtWidgets import QApplication
 
 from app import demo
 from app.handover.plain import handover_text
@@ -27,6 +26,8 @@ from core.record.instant import HOUR, parse
 from core.record.message import RecordError
 from storage.store import Store
 from tests.app.sheet.conftest import START
+from tests.support.pdf_text import flat, flat_pages
+from tests.support.sample_ward import sample_night
 
 HEADINGS = (
     "Settings now", "Leak, interface", "What changed", "Changes this shift and their responses",
@@ -35,20 +36,6 @@ HEADINGS = (
 )  # fmt: skip
 SIZES = {"A4": (595, 842), "Letter": (612, 792)}
 pytestmark = pytest.mark.usefixtures("application")
-
-
-def pages_of(data: bytes) -> list[str]:
-    """The text of each page without its spaces: lines may be broken anywhere."""
-    return [_flat(page.extract_text()) for page in PdfReader(BytesIO(data)).pages]
-
-
-def _flat(text: str) -> str:
-    return re.sub("[\\s\N{WORD JOINER}]+", "", text)
-
-
-@pytest.fixture(scope="module", params=sorted(PAPERS))
-def printed(request: pytest.FixtureRequest, content: SheetContent, qapp: QApplication) -> tuple[str, bytes]:
-    return request.param, pdf_bytes(content, request.param)[0]
 
 
 def test_one_page_for_the_ward_and_one_for_each_episode(printed: tuple[str, bytes], content: SheetContent) -> None:
@@ -62,39 +49,39 @@ def test_one_page_for_the_ward_and_one_for_each_episode(printed: tuple[str, byte
 def test_every_page_has_its_number_the_head_of_the_ledger_and_the_cautions(
     printed: tuple[str, bytes], content: SheetContent
 ) -> None:
-    texts = pages_of(printed[1])
+    texts = flat_pages(printed[1])
     for number, text in enumerate(texts, 1):
-        assert _flat(f"Page {number} of {len(texts)}") in text
-        assert _flat(content.head) in text
-        assert _flat(content.caution) in text
-        assert _flat(content.printed) in text
+        assert flat(f"Page {number} of {len(texts)}") in text
+        assert flat(content.head) in text
+        assert flat(content.caution) in text
+        assert flat(content.printed) in text
         for words in ("Given by", "Taken by", "A. Giver"):
-            assert _flat(words) in text
+            assert flat(words) in text
 
 
 def test_the_wards_page_says_all_of_every_episode(printed: tuple[str, bytes], content: SheetContent) -> None:
-    text = pages_of(printed[1])[0]
+    text = flat_pages(printed[1])[0]
     ward = content.ward
-    assert _flat(f"See first {ward.see_first}") in text
+    assert flat(f"See first {ward.see_first}") in text
     assert ward.see_first.startswith("Bed 4"), "the patient who must be escalated comes first"
     for row in ward.rows:
         for part in (f"{row.number} {row.label}", row.who, row.state, row.support, row.limits):
-            assert _flat(part) in text, part
+            assert flat(part) in text, part
         quiet = row.tier not in ("escalate", "concern") and not row.is_grave
-        elsewhere = quiet and _flat(row.label) in text.partition(_flat("On their own pages stand"))[2]
-        assert _flat(row.response) in text or elsewhere, row.label
+        elsewhere = quiet and flat(row.label) in text.partition(flat("On their own pages stand"))[2]
+        assert flat(row.response) in text or elsewhere, row.label
         for flag in row.flags:
             tier, _, words = flag.partition(" ")
-            assert _flat(tier + words) in text
-        assert _flat(row.remarks) in text
-    assert all(_flat(r.action) in text for r in ward.rows)
+            assert flat(tier + words) in text
+        assert flat(row.remarks) in text
+    assert all(flat(r.action) in text for r in ward.rows)
     for item in (*ward.due, *ward.due_other, ward.skin, *ward.missing, ward.compared):
-        assert _flat(item) in text, item
+        assert flat(item) in text, item
 
 
 def test_an_episodes_page_says_all_that_is_handed_over(printed: tuple[str, bytes], content: SheetContent) -> None:
-    for text, page in zip(pages_of(printed[1])[1:], content.episodes, strict=True):
-        assert text.startswith(_flat(page.label))
+    for text, page in zip(flat_pages(printed[1])[1:], content.episodes, strict=True):
+        assert text.startswith(flat(page.label))
         parts = [
             page.subtitle,
             page.standing,
@@ -103,7 +90,7 @@ def test_an_episodes_page_says_all_that_is_handed_over(printed: tuple[str, bytes
             *page.levers,
             page.since_head,
         ]
-        assert any(all(_flat(line) in text for line in told) for told in (page.since, page.since_short)), page.label
+        assert any(all(flat(line) in text for line in told) for told in (page.since, page.since_short)), page.label
         parts += [x for fact in (*page.facts, *page.support) for x in fact]
         parts += [x for fact in (*page.plan, *page.care) if fact[1] != ABSENT for x in fact]
         parts += [x for c in page.changes[-1:] for x in (c.at, c.what, c.response)]
@@ -112,17 +99,17 @@ def test_an_episodes_page_says_all_that_is_handed_over(printed: tuple[str, bytes
         parts += [f"{f.evidence} {f.source}" for f in strong]
         parts += [x for f in page.flags if not f.is_open for x in (f.marker, f.spell)]
         for part in parts:
-            assert _flat(part) in text, (page.label, part)
+            assert flat(part) in text, (page.label, part)
         for name in (n for n, value in (*page.plan, *page.care) if value == ABSENT):
-            assert _flat(name).lower() in text.lower(), "what was not recorded is named"
+            assert flat(name).lower() in text.lower(), "what was not recorded is named"
         for g in page.gases[-5:]:
             values = f"{g.ph} {g.delta_ph} {g.paco2} {g.delta_paco2} {g.pao2} {g.hco3}"
             row = [g.at, g.site, values, g.state, g.verdict]
-            assert all(_flat(cell) in text for cell in row), (page.label, row)
+            assert all(flat(cell) in text for cell in row), (page.label, row)
         for change in page.changes[:-1]:
-            assert _flat(change.response) in text or _flat(change.brief) in text, "every change has its verdict"
+            assert flat(change.response) in text or flat(change.brief) in text, "every change has its verdict"
         for heading in (*HEADINGS, "Handover remark", "Given by", "Taken by", "Time"):
-            assert _flat(heading) in text, heading
+            assert flat(heading) in text, heading
 
 
 def test_no_letter_is_smaller_than_can_be_read(printed: tuple[str, bytes]) -> None:
@@ -156,13 +143,13 @@ def test_it_is_printed_without_colour(printed: tuple[str, bytes]) -> None:
 
 
 def test_plain_text_has_the_same_words(content: SheetContent) -> None:
-    text = _flat(handover_text(content))
+    text = flat(handover_text(content))
     for page in content.episodes:
         parts = [page.standing, *(v for _, v in (*page.facts, *page.support, *page.plan, *page.care)), *page.due]
         parts += [page.since_head, *page.since, *page.levers]
         parts += [f.head for f in page.flags] + [c.response for c in page.changes]
         for part in parts:
-            assert _flat(part).replace("\N{MINUS SIGN}", "-") in text, part
+            assert flat(part).replace("\N{MINUS SIGN}", "-") in text, part
     assert all(len(line) <= 100 for line in handover_text(content).splitlines())
     assert handover_text(content).isascii() or "\N{MINUS SIGN}" not in handover_text(content)
 
@@ -181,11 +168,11 @@ def crowded(content: SheetContent, *, flags: int, changes: int, words: str, stro
 def test_the_fullest_page_is_one_page_and_says_what_it_leaves_out(content: SheetContent) -> None:
     data, pages = pdf_bytes(crowded(content, flags=3, changes=300, words="Better: pH +0.04 after 1 h."), "Letter")
     assert pages == 2
-    text = pages_of(data)[1]
-    assert re.search(_flat(r"\d+ earlier changes not shown: see the record"), text)
-    assert _flat("25 earlier gases not shown: see the record") in text
-    assert _flat("Earlier, by verdict alone: 03:00 IPAP 18 to 20 cmH2O: better;") in text
-    assert all(_flat(f"open flag {n}") in text for n in range(3))
+    text = flat_pages(data)[1]
+    assert re.search(flat(r"\d+ earlier changes not shown: see the record"), text)
+    assert flat("25 earlier gases not shown: see the record") in text
+    assert flat("Earlier, by verdict alone: 03:00 IPAP 18 to 20 cmH2O: better;") in text
+    assert all(flat(f"open flag {n}") in text for n in range(3))
 
 
 def test_twenty_changes_keep_their_verdicts_on_one_page(content: SheetContent) -> None:
@@ -195,7 +182,7 @@ def test_twenty_changes_keep_their_verdicts_on_one_page(content: SheetContent) -
                     for n, c in enumerate(full.episodes[0].changes))  # fmt: skip
     data, pages = pdf_bytes(replace(full, episodes=(replace(full.episodes[0], changes=changes),)), "Letter")
     assert pages == 2
-    text = pages_of(data)[1]
+    text = flat_pages(data)[1]
     for n in range(20):
         assert f"change{n:02d}:better" in text or f"what{n:02d}" in text, n
     assert "changesnotshown" not in text
@@ -203,16 +190,16 @@ def test_twenty_changes_keep_their_verdicts_on_one_page(content: SheetContent) -
 
 def test_open_flags_are_never_left_out(content: SheetContent) -> None:
     data, _ = pdf_bytes(crowded(content, flags=60, changes=60, words="x " * 200), "Letter")
-    text = "".join(pages_of(data)[1:])
+    text = "".join(flat_pages(data)[1:])
     assert all(re.search(f"openflag{n}[;.]", text) for n in range(60))
-    assert _flat("Evidence and sources of the flags of concern: see the record.") not in text, "none is the strongest"
+    assert flat("Evidence and sources of the flags of concern: see the record.") not in text, "none is the strongest"
 
 
 def test_what_no_words_make_fit_goes_on_on_further_pages_and_says_so(content: SheetContent) -> None:
     data, pages = pdf_bytes(crowded(content, flags=90, changes=60, words="x " * 200, strongest=True), "Letter")
-    texts = pages_of(data)[1:]
+    texts = flat_pages(data)[1:]
     assert pages > 2
-    assert _flat("Goes on on the next page.") in texts[0]
+    assert flat("Goes on on the next page.") in texts[0]
     assert all("continued" in t for t in texts[1:])
     assert all(re.search(f"openflag{n}\\D", "".join(texts)) for n in range(90))
 
@@ -221,25 +208,25 @@ def test_a_remark_longer_than_a_page_is_printed_whole(content: SheetContent) -> 
     words = "\n".join(f"line{n} of what was typed by hand" for n in range(150))
     page = replace(content.episodes[0], remark=words)
     data, pages = pdf_bytes(replace(content, episodes=(page,)))
-    text = "".join(pages_of(data))
-    assert all(_flat(f"line{n} of what") in text for n in range(150))
+    text = "".join(flat_pages(data))
+    assert all(flat(f"line{n} of what") in text for n in range(150))
     assert pages > 2
-    assert _flat("the remark stands on the next page") in text
+    assert flat("the remark stands on the next page") in text
 
 
 def test_a_very_long_word_is_broken_and_not_clipped(content: SheetContent) -> None:
     word = "W" * 300
     long = {"plan": (("Plan", word),), "label": "Bed " + "9" * 80, "remark": "first line\nsecond line"}
     data, _ = pdf_bytes(replace(content, episodes=(replace(content.episodes[0], **long),)))
-    text = "".join(pages_of(data)[1:])
+    text = "".join(flat_pages(data)[1:])
     assert text.count("W") >= 300
-    assert _flat("first line second line") in text
+    assert flat("first line second line") in text
 
 
 def test_markup_in_a_note_stays_text(content: SheetContent) -> None:
     page = replace(content.episodes[0], plan=(("Plan", "<b>bold</b> & <img src=x>"),), remark="<script>")
-    text = pages_of(pdf_bytes(replace(content, episodes=(page,)))[0])[1]
-    assert _flat("<b>bold</b> & <img src=x>") in text
+    text = flat_pages(pdf_bytes(replace(content, episodes=(page,)))[0])[1]
+    assert flat("<b>bold</b> & <img src=x>") in text
     assert "<script>" in text
 
 
@@ -249,13 +236,13 @@ def test_a_ward_with_nobody_says_so(content: SheetContent) -> None:
     data, pages = pdf_bytes(replace(content, ward=ward, episodes=()))
     assert pages == 1
     for words in ("No episode stood in this shift.", "Nothing is due."):
-        assert _flat(words) in pages_of(data)[0]
+        assert flat(words) in flat_pages(data)[0]
 
 
 def test_a_large_ward_goes_on_to_further_pages_and_signs_once(content: SheetContent) -> None:
     ward = replace(content.ward, rows=content.ward.rows * 4)
     data, pages = pdf_bytes(replace(content, ward=ward, episodes=()))
-    texts = pages_of(data)
+    texts = flat_pages(data)
     assert pages == len(texts) > 1
     assert ["Givenby" in t for t in texts] == [False] * (pages - 1) + [True]
     assert all("Handover,continued" in t for t in texts[1:])
@@ -296,27 +283,30 @@ def test_a_closed_handover_is_kept_as_it_was_printed(content: SheetContent, tmp_
         assert store.verify() == ()
 
 
-@pytest.mark.parametrize("paper", sorted(PAPERS))
-def test_after_a_closed_one_each_episode_still_has_one_page(night_store: Store, tmp_path: Path, paper: str) -> None:
-    """The fullest pages of the night: every change since the last handover comes on top."""
-    night_store.backup(tmp_path / "copy")
-    Store.restore(tmp_path / "copy", tmp_path / "own.luff")
-    now, reader = demo.demo_now(), Reader(demo.ZONE)
-    with Store.open(tmp_path / "own.luff") as store:
+@pytest.fixture(scope="module")
+def since_a_closed_one(tmp_path_factory: pytest.TempPathFactory) -> SheetContent:
+    """The night, with a handover closed at 02:00 in it."""
+    now = demo.demo_now()
+    with Store.open(sample_night(tmp_path_factory.mktemp("closed"))) as store:
         first = operations.HandoverRequest(START - 4 * HOUR, parse("2026-03-28T02:00:00Z"))
         made = operations.prepare(store, "AB", now, first).value
         kept = operations.ClosedHandover("Night, AB to CD", b"%PDF", operations.facts_of(made))
         operations.close(store, "AB", now, kept)
-        content = sheet_content(
-            operations.prepare(store, "AB", now, operations.HandoverRequest(START, now)).value, reader
-        )
+        shift = operations.HandoverRequest(START, now)
+        return sheet_content(operations.prepare(store, "AB", now, shift).value, Reader(demo.ZONE))
+
+
+@pytest.mark.parametrize("paper", sorted(PAPERS))
+def test_after_a_closed_one_each_episode_still_has_one_page(since_a_closed_one: SheetContent, paper: str) -> None:
+    """The fullest pages of the night: every change since the last handover comes on top."""
+    content = since_a_closed_one
     data, pages = pdf_bytes(content, paper)
     assert pages == 1 + len(content.episodes)
-    texts = pages_of(data)
-    assert _flat("told since the last closed handover, as of 28-Mar-2026 02:00: Night, AB to CD.") in texts[0]
+    texts = flat_pages(data)
+    assert flat("told since the last closed handover, as of 28-Mar-2026 02:00: Night, AB to CD.") in texts[0]
     for text, page in zip(texts[1:], content.episodes, strict=True):
-        assert _flat("Since the last handover, 28-Mar-2026 02:00: ") in text
-        assert any(all(_flat(line) in text for line in told) for told in (page.since, page.since_short)), page.label
+        assert flat("Since the last handover, 28-Mar-2026 02:00: ") in text
+        assert any(all(flat(line) in text for line in told) for told in (page.since, page.since_short)), page.label
     told = {p.label: " ".join(p.since) for p in content.episodes}
     assert "Settings: IPAP 18 to 24 cmH2O, FiO2 30 to 35 %, backup rate 14 to 16/min." in told["Bed 4"]
     assert "Flags raised: pH below 7.20 on support 04:18;" in told["Bed 4"]

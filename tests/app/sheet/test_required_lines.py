@@ -5,11 +5,7 @@ What is expected stands here in letters: nothing is taken from what made the pag
 
 from __future__ import annotations
 
-import re
-from io import BytesIO
-
 import pytest
-from pypdf import PdfReader
 
 from app.operations import entry, episode, flag
 from app.operations import handover as operations
@@ -20,6 +16,7 @@ from app.sheet.printing import pdf_bytes
 from app.words import Reader
 from core.record.instant import HOUR, MINUTE, parse
 from storage.store import Store
+from tests.support.pdf_text import flat, flat_pages
 
 EVENING, MORNING = parse("2026-03-27T19:30:00Z"), parse("2026-03-28T07:30:00Z")
 FACTS = {
@@ -101,7 +98,7 @@ def printed(request: pytest.FixtureRequest, tmp_path_factory: pytest.TempPathFac
         shift = operations.HandoverRequest(EVENING, MORNING)
         made = operations.prepare(store, "AB", MORNING, shift).value
         content = sheet_content(made, Reader(), given_by="G. Iver", taken_by="T. Aker")
-    return [flat(page.extract_text()) for page in PdfReader(BytesIO(pdf_bytes(content, request.param)[0])).pages]
+    return flat_pages(pdf_bytes(content, request.param)[0])
 
 
 def log(store: Store, now: int, line: str) -> None:
@@ -113,11 +110,6 @@ def settle(store: Store) -> None:
     figures = of_episode(store, "KL", MORNING, EpisodeRequest("A", MORNING - MINUTE)).value.figures
     found = next(f for f in figures.flags if f.state == "raised" and f.marker == "skin_check_overdue")
     flag.settle(store, "KL", MORNING - MINUTE, flag.FlagRequest("A", found.flag_id, "seen with the team"))
-
-
-def flat(text: str) -> str:
-    """Without its spaces: a line may be broken anywhere."""
-    return re.sub("[\\s\N{WORD JOINER}]+", "", text)
 
 
 @pytest.mark.parametrize("clause", EPISODE)

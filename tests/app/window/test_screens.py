@@ -1,5 +1,6 @@
 """Pictures of every screen in both looks, from the sample shift, at the least size."""
 
+import numpy as np
 from PySide6.QtGui import QImage
 
 from app.look.theme import THEMES
@@ -17,6 +18,13 @@ EXPECTED = {
 }  # fmt: skip
 
 
+def colours_of(image: QImage) -> int:
+    """How many colours a picture has, by every seventh pixel of every seventh line."""
+    plain = image.convertToFormat(QImage.Format.Format_RGB32)
+    pixels = np.frombuffer(plain.constBits(), np.uint32).reshape(plain.height(), plain.bytesPerLine() // 4)
+    return len(np.unique(pixels[::7, : plain.width() : 7]))
+
+
 def test_every_screen_is_drawn(qapp, tmp_path, monkeypatch):
     monkeypatch.setattr(screens, "SIZES", ((1280, 800),))
     made = screens.draw_all(tmp_path / "pictures")
@@ -25,10 +33,7 @@ def test_every_screen_is_drawn(qapp, tmp_path, monkeypatch):
     for path in made:
         image = QImage(str(path))
         assert image.width() >= 300
-        colours = {
-            image.pixelColor(x, y).rgb() for x in range(0, image.width(), 7) for y in range(0, image.height(), 7)
-        }
-        assert len(colours) > 4, path.name
+        assert colours_of(image) > 4, path.name
     ward = QImage(str(tmp_path / "pictures" / "ward-light-1280x800.png"))
     assert (ward.width(), ward.height()) == (1280, 800)
 

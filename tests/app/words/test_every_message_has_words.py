@@ -7,6 +7,7 @@ text that is written like a key (`room.what`) of a family that messages use.
 import ast
 import re
 from collections.abc import Iterator
+from functools import cache
 from pathlib import Path
 
 import pytest
@@ -40,10 +41,16 @@ OPERATIONS = {
 POLICY = shipped_policy()
 
 
+@cache
+def nodes(path: Path) -> tuple[ast.AST, ...]:
+    """Everything in a module's syntax tree; read once, since every test here looks at all of them."""
+    return tuple(ast.walk(ast.parse(path.read_text("utf-8"))))
+
+
 def first_arguments(path: Path, function: str) -> list[str]:
     """Literal first arguments of a module's own helper that puts a family before its key."""
     found = []
-    for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+    for node in nodes(path):
         if isinstance(node, ast.Call) and isinstance(node.func, ast.Name) and node.func.id == function:
             arms = [node.args[0]]
             if isinstance(arms[0], ast.IfExp):
@@ -55,7 +62,7 @@ def first_arguments(path: Path, function: str) -> list[str]:
 def assigned_keys(path: Path) -> list[str]:
     """Texts assigned to a name `key` in a module."""
     found: list[str] = []
-    for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+    for node in nodes(path):
         if isinstance(node, ast.Assign) and any(isinstance(t, ast.Name) and t.id == "key" for t in node.targets):
             arms = [node.value.body, node.value.orelse] if isinstance(node.value, ast.IfExp) else [node.value]
             found += [a.value for a in arms if isinstance(a, ast.Constant) and isinstance(a.value, str)]
@@ -93,6 +100,7 @@ DYNAMIC = {
 """Keys made at run time: what stands before the brace, and every end it can get."""
 
 
+@cache
 def sources() -> list[Path]:
     found = (p for room in ("core", "storage", "app") for p in (ROOT / room).rglob("*.py"))
     return sorted(p for p in found if "words" not in p.parts)
@@ -100,7 +108,7 @@ def sources() -> list[Path]:
 
 def calls() -> Iterator[tuple[Path, ast.Call]]:
     for path in sources():
-        for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+        for node in nodes(path):
             if isinstance(node, ast.Call):
                 place = MAKERS.get(name_of(node))
                 if place is not None and len(node.args) > place:
@@ -124,7 +132,7 @@ def literal_key(call: ast.Call) -> str:
 def literal_keys() -> dict[str, Path]:
     found: dict[str, Path] = {}
     for path in sources():
-        for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+        for node in nodes(path):
             if isinstance(node, ast.Constant) and isinstance(node.value, str) and KEY.fullmatch(node.value):
                 found.setdefault(node.value, path)
     return found
@@ -134,7 +142,7 @@ def operations() -> set[str]:
     """What the ledger calls its batches: texts given as `operation`."""
     found = set()
     for path in sources():
-        for node in ast.walk(ast.parse(path.read_text("utf-8"))):
+        for node in nodes(path):
             if isinstance(node, ast.keyword) and node.arg == "operation" and isinstance(node.value, ast.Constant):
                 found.add(str(node.value.value))
     return found
@@ -145,6 +153,7 @@ def families() -> set[str]:
     return {k.partition(".")[0] for k in keys} | {p.rstrip(".") for p in DYNAMIC} | {"undefined"}
 
 
+@cache
 def wanted() -> dict[str, Path]:
     known, names = families(), OPERATIONS | operations()
     found = {
