@@ -1,6 +1,6 @@
 """What a store has is told sample by sample, however its blocks are cut: nothing is taken twice, nothing missed."""
 
-from itertools import count
+from itertools import count, pairwise
 from pathlib import Path
 
 import numpy as np
@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 from core.record.channels import channel
 from core.record.instant import DAY, HOUR, MINUTE, SECOND, parse
 from core.record.samples import DeviceSamples
+from storage.block_cuts import NEAR
 from storage.draft_batch import DraftBatch
 from storage.intake.held_samples import _new_of
 from storage.intake.judged import new_chunks
@@ -131,3 +132,33 @@ def test_whole_hours_of_files_in_any_order_end_as_laid_hour_by_hour(
             model |= {T0 + int(m) * MINUTE: float(value) for m in minutes}
         found: DeviceSamples = store.samples("E1", channel="leak")[0]
         assert {int(t): float(v) for t, v in zip(found.t, found.v, strict=True)} == model
+
+
+@settings(max_examples=40, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+@given(seed=st.integers(0, 2**32))
+def test_whatever_lay_there_a_file_is_seen_as_it_is_and_hides_nothing_in_its_pauses(
+    tmp_path: Path, seed: int
+) -> None:
+    """Files of any step, hole and order: the newest's samples are seen, none is made up, its pauses are free."""
+    rng = np.random.default_rng(seed)
+    with Store.create(tmp_path / f"{next(NUMBERS)}.luff", now=NOW) as store:
+        seen: dict[int, float] = {}
+        for number in range(4):
+            step = rng.choice([10, 60, 300, 1200])
+            at = np.arange(rng.integers(0, 3600), rng.integers(4000, 40_000), step)
+            at = at[rng.random(at.size) > rng.choice([0, 0.1, 0.7])]
+            hole = rng.integers(0, 40_000)
+            at = at[(at < hole) | (at > hole + rng.choice([0, 600, 5000]))]
+            if at.size == 0:
+                continue
+            values = np.floor(at / 600) % 3 + (number if rng.random() < 0.3 else 0)
+            taken(store, f"file {number}", at / 60, values)
+            (found,) = store.samples("E1", channel="leak")
+            now = dict(zip(((found.t - T0) // SECOND).tolist(), found.v.tolist(), strict=True))
+            newest = dict(zip(at.tolist(), values.tolist(), strict=True))
+            assert newest.items() <= now.items()
+            assert now.items() <= (seen | newest).items()
+            edges = [-(10**9), *at.tolist(), 10**9]
+            free = [t for t in seen if any(a < t < b for a, b in pairwise(edges) if b - a > NEAR // SECOND)]
+            assert {t: seen[t] for t in free}.items() <= now.items(), "a pause hides nothing"
+            seen = now
