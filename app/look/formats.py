@@ -216,19 +216,20 @@ def logged(channel: str, value: float | str | None, raw: str, raw_unit: str, gas
     >>> logged("temp", 37.0, "98.6", "degF"), logged("paco2", 70.0, "9.33", "kPa"), logged("ph", 7.4, "7.40", "pH")
     ('98.6 °F (37.0 °C)', '9.33 kPa (70 mmHg)', '7.40')
     >>> logged("fio2", 0.35, "0.35", "fraction"), logged("dyspnoea", 8.0, "8", "points")
-    ('0.35 (35 %)', '8 (8 of 10)')
+    ('0.35 (35 %)', '8 of 10')
     >>> logged("indication", "copd", "copd", ""), logged("rr", 24.0, "", "")
     ('COPD', '24/min')
     """
     kept, known = quantity(channel, value, gas_unit), CHANNELS.get(channel)
-    if not raw or known is None or known.kind in (Kind.MARK, Kind.CHOICE):
+    plain_scale = channel == "dyspnoea" and isinstance(value, float) and raw == trimmed(value)
+    if not raw or known is None or known.kind in (Kind.MARK, Kind.CHOICE) or plain_scale:
         return kept
     typed = as_typed(raw, raw_unit)
     if known.kind is not Kind.NUMBER:
         return typed
     in_gas_unit = channel in ("paco2", "pao2", "usual_paco2")
     same = raw_unit == (gas_unit if in_gas_unit else known.unit) and known.unit != "fraction"
-    if (same and channel != "dyspnoea") or raw_unit == "%":
+    if same or raw_unit == "%":
         return typed
     return f"{typed} (pH {kept})" if channel == "ph" else f"{typed} ({kept})"
 
