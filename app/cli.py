@@ -123,7 +123,8 @@ def _recording(command: Command) -> None:
     correct.add_argument("--unit", default="", help="the unit of --value")
     correct.add_argument("--at", type=moment, metavar="T", help="the right time")
     correct.add_argument("--reason", default="", help="why")
-    correct.add_argument("--yes", action="store_true", help="answer yes to the value's questions")
+    correct.add_argument("--only", action="store_true", help="only this value, not the whole gas it belongs to")
+    correct.add_argument("--yes", action="store_true", help="answer yes to what is asked")
 
 
 def _about_files(intake: argparse.ArgumentParser) -> None:

@@ -1,10 +1,13 @@
-"""`luffmark correct EPISODE [ENTRY] ...`: correct, withdraw or move an entry, or list those that count."""
+"""`luffmark correct EPISODE [ENTRY] ...`: correct, withdraw or move an entry, or list those that count.
+
+A value of a gas takes the rest of its gas along, unless `--only`.
+"""
 
 from __future__ import annotations
 
 import argparse
 import sys
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 
 from app.commands.context import Context
 from app.look.formats import plain, quantity, wall
@@ -18,7 +21,7 @@ from core.record.channels import CHANNELS, Kind
 from core.record.entries import Action, Entry, NewEntry
 from core.record.episode import Episode
 from core.record.local_time import zoned_iso
-from core.record.message import Message, refuse
+from core.record.message import refuse
 from storage.store import Store
 
 SHORT_ID = 8
@@ -41,34 +44,42 @@ def run(context: Context, args: argparse.Namespace) -> int:
         if args.entry is None:
             return _list(context, record, reader, intake.origins(store, context.by, context.now(), record.key).value)
         entry_id = _whole_id(record, args.entry)
-        old = next(s.entry for s in record.standing if s.entry.id == entry_id)
-        asked = _questions(context, store, args, entry_id)
+        request = _request(args, entry_id)
+        asked = correction.correction_questions(store, context.by, context.now(), request).value
         if asked and not args.yes and args.reason.strip():
             told = plain(" ".join(sentence(m, reader) for m in asked))
             print(f"luffmark: not recorded. {told} Answer yes with --yes.", file=sys.stderr)
             return 1
-        outcome = _supersede(context, store, args, entry_id)
+        outcome = _supersede(context, store, request)
         touched = {args.episode, outcome.value.episode}
         flags.keep_transitions(store, context.by, context.now(), sorted(touched))
     made = outcome.value
-    value = {"episode": made.episode, "ids": list(made.ids), "head": outcome.head, "old": _facts(old, reader),
-             "new": None if args.withdraw else _facts(made.entries[0], reader)}  # fmt: skip
-    context.answer(_done(old, made, reader), value)
+    by_id = {s.entry.id: s.entry for s in record.standing}
+    pairs = sorted(((by_id[e.replaces], e) for e in made.entries), key=lambda pair: pair[0].id != entry_id)
+    facts = [{"old": _facts(old, reader), "new": None if args.withdraw else _facts(new, reader)}
+             for old, new in pairs]  # fmt: skip
+    value = {"episode": made.episode, "ids": list(made.ids), "head": outcome.head, **facts[0], "with": facts[1:]}
+    context.answer(_done(pairs, made, reader), value)
     return 0
 
 
-def _done(old: Entry, made: Recorded, reader: Reader) -> str:
-    """What stood and what stands now, each with its moment where that changed."""
-    new = made.entries[0]
-    name, was, then = CHANNELS[old.channel].name, _value(old, reader), wall(old.at, reader.zone)
+def _done(pairs: Sequence[tuple[Entry, NewEntry]], made: Recorded, reader: Reader) -> str:
+    """What stood and what stands now, each with its moment where that changed; the rest of a gas by its values."""
+    old, new = pairs[0]
+    then, is_then = wall(old.at, reader.zone), wall(new.at, reader.zone)
+    name = CHANNELS[old.channel].name
+    told = ", ".join(f"{CHANNELS[e.channel].name} {_value(e, reader)}".rstrip() for e, _ in pairs)
     if new.action is Action.WITHDRAW:
-        return f"Withdrawn in {old.episode}: {name} {was} of {then}."
+        return f"Withdrawn in {old.episode}: {told} of {then}."
     if new.action is Action.MOVE:
-        return f"Moved from {old.episode} to {made.episode}: {name} {was} of {then}."
-    is_now, at = _value(new, reader), wall(new.at, reader.zone)
+        return f"Moved from {old.episode} to {made.episode}: {told} of {then}."
     if new.at == old.at:
-        return f"Corrected in {made.episode}: {name} of {then}, {was} to {is_now}."
-    return f"Corrected in {made.episode}: {name} {was} of {then} to {is_now} of {at}."
+        return f"Corrected in {made.episode}: {name} of {then}, {_value(old, reader)} to {_value(new, reader)}."
+    if len(pairs) == 1:
+        return (f"Corrected in {made.episode}: {name} {_value(old, reader)} of {then} to {_value(new, reader)} of "
+                f"{is_then}.")  # fmt: skip
+    right = ", ".join(f"{CHANNELS[e.channel].name} {_value(e, reader)}".rstrip() for _, e in pairs)
+    return f"Corrected in {made.episode}: {told} of {then} to {right} of {is_then}."
 
 
 def _facts(e: NewEntry, reader: Reader) -> dict[str, object]:
@@ -76,27 +87,22 @@ def _facts(e: NewEntry, reader: Reader) -> dict[str, object]:
             "value": e.number if e.words is None else e.words}  # fmt: skip
 
 
-def _supersede(context: Context, store: Store, args: argparse.Namespace, entry_id: str) -> Outcome[Recorded]:
+def _supersede(context: Context, store: Store, request: correction.Request) -> Outcome[Recorded]:
     now, who = context.now(), context.by
+    if isinstance(request, correction.WithdrawalRequest):
+        return correction.withdraw(store, who, now, request)
+    if isinstance(request, correction.MoveRequest):
+        return correction.move(store, who, now, request)
+    return correction.correct(store, who, now, request)
+
+
+def _request(args: argparse.Namespace, entry_id: str) -> correction.Request:
+    more = {"confirmed": args.yes, "alone": args.only}
     if args.withdraw:
-        withdrawal = correction.WithdrawalRequest(args.episode, entry_id, args.reason)
-        return correction.withdraw(store, who, now, withdrawal)
+        return correction.WithdrawalRequest(args.episode, entry_id, args.reason, **more)
     if args.move_to is not None:
-        move = correction.MoveRequest(args.episode, entry_id, args.move_to, args.reason)
-        return correction.move(store, who, now, move)
-    return correction.correct(store, who, now, _right(args, entry_id))
-
-
-def _right(args: argparse.Namespace, entry_id: str) -> correction.CorrectionRequest:
-    return correction.CorrectionRequest(args.episode, entry_id, args.reason, args.value, args.unit, args.at, args.yes)
-
-
-def _questions(context: Context, store: Store, args: argparse.Namespace, entry_id: str) -> tuple[Message, ...]:
-    """What the right value or time raises; a withdrawal and a move raise nothing."""
-    if args.value is None and args.at is None:
-        return ()
-    request = _right(args, entry_id)
-    return correction.correction_questions(store, context.by, context.now(), request).value
+        return correction.MoveRequest(args.episode, entry_id, args.move_to, args.reason, **more)
+    return correction.CorrectionRequest(args.episode, entry_id, args.reason, args.value, args.unit, args.at, **more)
 
 
 def _whole_id(record: Episode, start: str) -> str:

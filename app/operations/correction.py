@@ -1,4 +1,8 @@
-"""Operations that supersede what was logged: correct, withdraw, move, undo. The old stays in the ledger."""
+"""Operations that supersede what was logged: correct, withdraw, move, undo. The old stays in the ledger.
+
+The values of one gas go together: one that is moved, withdrawn or given another time takes the rest of its gas with
+it, in one batch. A single value of a gas (`alone`) asks first, since half a gas would be left.
+"""
 
 from __future__ import annotations
 
@@ -6,12 +10,13 @@ from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
-from app.operations.entry_questions import questions_of_change, reading_of
+from app.operations.entry_questions import questions, questions_of_change, reading_of
 from app.operations.episode import check_known, load
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded, append
 from core.record.channels import channel
 from core.record.entries import Action, Entry, NewEntry, from_reading
+from core.record.gas_together import gas_with
 from core.record.instant import Instant
 from core.record.local_time import check_not_future
 from core.record.message import Message, refuse
@@ -29,7 +34,7 @@ TAKEN_BACK: Mapping[Action, Mapping[str | None, str]] = {
 
 @dataclass(frozen=True, slots=True)
 class CorrectionRequest:
-    """A new value, time or both for an entry, with the reason."""
+    """A new value, time or both for an entry, with the reason. The time is that of its whole gas unless `alone`."""
 
     episode: str
     entry_id: str
@@ -38,25 +43,33 @@ class CorrectionRequest:
     unit: str = ""
     at: Instant | None = None
     confirmed: bool = False
+    alone: bool = False
 
 
 @dataclass(frozen=True, slots=True)
 class WithdrawalRequest:
-    """An entry that must not count, with the reason."""
+    """An entry, with its whole gas unless `alone`, that must not count, with the reason."""
 
     episode: str
     entry_id: str
     reason: str
+    confirmed: bool = False
+    alone: bool = False
 
 
 @dataclass(frozen=True, slots=True)
 class MoveRequest:
-    """An entry that belongs to another episode, with the reason."""
+    """An entry, with its whole gas unless `alone`, that belongs to another episode, with the reason."""
 
     episode: str
     entry_id: str
     to_episode: str
     reason: str
+    confirmed: bool = False
+    alone: bool = False
+
+
+Request = CorrectionRequest | WithdrawalRequest | MoveRequest
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,66 +87,113 @@ def correct(store: Store, who: str, now: Instant, request: CorrectionRequest) ->
         RecordError: `correction.*`, or what is wrong with the value; `line.unconfirmed` where it asks first.
     """
     _check_reason(request.reason)
-    old, at, reading = _right(store, now, request)
-    asked = questions_of_change(store, load(store, request.episode), old, at, reading)
-    if asked and not request.confirmed:
-        raise refuse("line.unconfirmed", count=len(asked), first=asked[0].key)
-    if request.value is None:
+    olds, at, reading = _right(store, now, request)
+    _check_asked(store, now, request)
+    made = []
+    for old in olds:
         new = replace(_as_new(old), at=at)
-    else:
-        new = from_reading(old.episode, at, reading, zone=old.zone, note=old.note, confirmed=request.confirmed)
-    new = replace(new, by=who, action=Action.CORRECT, replaces=old.id, reason=request.reason.strip())
-    return append(store, old.episode, (new,), who, "entry.correct", now)
-
-
-def correction_questions(
-    store: Store, who: str, now: Instant, request: CorrectionRequest
-) -> Outcome[tuple[Message, ...]]:
-    """What to ask before a value takes the place of an entry's: its limits, a gas against itself, the course.
-
-    Raises:
-        RecordError: as `correct`, but for a reason that is missing.
-    """
-    old, at, reading = _right(store, now, request)
-    return Outcome(questions_of_change(store, load(store, request.episode), old, at, reading), store.head())
-
-
-def _right(store: Store, now: Instant, request: CorrectionRequest) -> tuple[Entry, Instant, Reading]:
-    """The entry to be superseded, and the right moment and value."""
-    old = _standing_entry(store, request.episode, request.entry_id)
-    at = old.at if request.at is None else request.at
-    check_not_future(at, now)
-    if request.value is None:
-        return old, at, reading_of(old)
-    return old, at, read_value(channel(old.channel), request.value, request.unit)
+        if old.id == request.entry_id and request.value is not None:
+            new = from_reading(old.episode, at, reading, zone=old.zone, note=old.note, confirmed=request.confirmed)
+        made.append(replace(new, by=who, action=Action.CORRECT, replaces=old.id, reason=request.reason.strip()))
+    return append(store, request.episode, tuple(made), who, "entry.correct", now)
 
 
 def withdraw(store: Store, who: str, now: Instant, request: WithdrawalRequest) -> Outcome[Recorded]:
     """Let an entry no longer count; it stays visible as withdrawn.
 
     Raises:
-        RecordError: `correction.*`.
+        RecordError: `correction.*`; `line.unconfirmed` where it asks first.
     """
-    old = _standing_entry(store, request.episode, request.entry_id)
+    olds = _superseded(store, request)
     _check_reason(request.reason)
-    new = replace(_withdrawal(old, who), reason=request.reason.strip())
-    return append(store, old.episode, (new,), who, "entry.withdraw", now)
+    _check_asked(store, now, request)
+    made = tuple(replace(_withdrawal(old, who), reason=request.reason.strip()) for old in olds)
+    return append(store, request.episode, made, who, "entry.withdraw", now)
 
 
 def move(store: Store, who: str, now: Instant, request: MoveRequest) -> Outcome[Recorded]:
     """Take an entry to the episode it belongs to.
 
     Raises:
-        RecordError: `correction.*`, `episode.unknown`.
+        RecordError: `correction.*`, `episode.unknown`; `line.unconfirmed` where it asks first.
     """
-    old = _standing_entry(store, request.episode, request.entry_id)
+    olds = _superseded(store, request)
     _check_reason(request.reason)
+    _check_target(store, request)
+    _check_asked(store, now, request)
+    made = tuple(
+        replace(_as_new(old), episode=request.to_episode, by=who, action=Action.MOVE, replaces=old.id,
+                reason=request.reason.strip()) for old in olds
+    )  # fmt: skip
+    return append(store, request.to_episode, made, who, "entry.move", now)
+
+
+def correction_questions(store: Store, who: str, now: Instant, request: Request) -> Outcome[tuple[Message, ...]]:
+    """What to ask before entries are superseded: a value's limits, a gas against itself and the patient's last, the
+    course, and whether half a gas is meant.
+
+    Raises:
+        RecordError: as the operation itself, but for a reason that is missing.
+    """
+    return Outcome(_questions(store, now, request), store.head())
+
+
+def _check_asked(store: Store, now: Instant, request: Request) -> None:
+    asked = () if request.confirmed else _questions(store, now, request)
+    if asked:
+        raise refuse("line.unconfirmed", count=len(asked), first=asked[0].key)
+
+
+def _questions(store: Store, now: Instant, request: Request) -> tuple[Message, ...]:
+    record = load(store, request.episode)
+    whole = gas_with(request.entry_id, record.standing)
+    half = _half_gas(request, whole)
+    if isinstance(request, CorrectionRequest):
+        olds, at, reading = _right(store, now, request)
+        given = [reading if old.id == request.entry_id else reading_of(old) for old in olds]
+        asked = questions_of_change(store, record, olds, at, given)
+        return (*half, *asked) if request.at not in (None, olds[0].at) else asked
+    olds = _superseded(store, request)
+    if isinstance(request, WithdrawalRequest):
+        return half
+    _check_target(store, request)
+    target = load(store, request.to_episode)
+    return (*half, *questions(store, target, olds[0].at, [reading_of(old) for old in olds]))
+
+
+def _half_gas(request: Request, whole: tuple[Entry, ...]) -> tuple[Message, ...]:
+    """One value alone of a gas that has more: the rest would be left as another gas."""
+    rest = [e for e in whole if e.id != request.entry_id]
+    if not request.alone or not rest:
+        return ()
+    chosen = next(e for e in whole if e.id == request.entry_id)
+    left = ",".join(dict.fromkeys(e.channel for e in rest))
+    return (Message("correction.half_gas", {"channel": chosen.channel, "left": left, "at": chosen.at}),)
+
+
+def _superseded(store: Store, request: Request) -> tuple[Entry, ...]:
+    """The entries that a request is about: one, or the values of one gas."""
+    one = _standing_entry(store, request.episode, request.entry_id)
+    if request.alone:
+        return (one,)
+    return gas_with(one.id, load(store, request.episode).standing) or (one,)
+
+
+def _right(store: Store, now: Instant, request: CorrectionRequest) -> tuple[tuple[Entry, ...], Instant, Reading]:
+    """The entries to be superseded, their right moment, and the right value of the one that was chosen."""
+    old = _standing_entry(store, request.episode, request.entry_id)
+    at = old.at if request.at is None else request.at
+    check_not_future(at, now)
+    olds = (old,) if at == old.at else _superseded(store, request)
+    if request.value is None:
+        return olds, at, reading_of(old)
+    return olds, at, read_value(channel(old.channel), request.value, request.unit)
+
+
+def _check_target(store: Store, request: MoveRequest) -> None:
     check_known(store, request.to_episode)
-    if request.to_episode == old.episode:
-        raise refuse("correction.same_episode", episode=old.episode, accepted="another episode")
-    new = replace(_as_new(old), episode=request.to_episode, by=who, action=Action.MOVE, replaces=old.id,
-                  reason=request.reason.strip())  # fmt: skip
-    return append(store, request.to_episode, (new,), who, "entry.move", now)
+    if request.to_episode == request.episode:
+        raise refuse("correction.same_episode", episode=request.episode, accepted="another episode")
 
 
 def undo(store: Store, who: str, now: Instant, request: UndoRequest) -> Outcome[Recorded]:

@@ -61,17 +61,17 @@ def _stands(record: Episode, key: str, at: Instant) -> float | None:
 
 
 def questions_of_change(
-    store: Store, record: Episode, old: Entry, at: Instant, reading: Reading
+    store: Store, record: Episode, olds: Sequence[Entry], at: Instant, given: Sequence[Reading]
 ) -> tuple[Message, ...]:
-    """The questions that a reading raises which takes the place of an entry: as if that had never been logged.
+    """The questions that readings raise which take the place of entries: as if those had never been logged.
 
-    What the record before raised already, the entry's own value at its own time, is not asked again.
+    What the record before raised already, the entries' own values at their own time, is not asked again.
     """
-    without = build_episode(record.key, [s for s in record.standing if s.entry.id != old.id])
-    asked = questions(store, without, at, (reading,))
-    if at == old.at and reading.value == _value(old):
+    if all(at == old.at and reading.value == _value(old) for old, reading in zip(olds, given, strict=True)):
         return ()
-    return asked
+    replaced = {old.id for old in olds}
+    without = build_episode(record.key, [s for s in record.standing if s.entry.id not in replaced])
+    return questions(store, without, at, given)
 
 
 def reading_of(entry: Entry) -> Reading:

@@ -5,6 +5,8 @@ from typing import Final
 TEMPLATES: Final[dict[str, str]] = {
     "batch.empty": "There is nothing to record.",
     "channel.unknown": "'{channel}' is no channel. Accepted: {accepted}.",
+    "correction.half_gas":
+        "{channel:name} is one value of the gas of {at:time}: {left:list} would be left without it. Only this value?",
     "correction.many_entries": "{count} entries begin with '{entry}'. Accepted: {accepted}.",
     "correction.no_reason": "A correction needs its reason: {accepted}.",
     "correction.same_episode": "The entry is in {episode} already. Name {accepted}.",
