@@ -5,13 +5,16 @@ from math import hypot
 
 import numpy as np
 from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QColor, QHelpEvent, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPolygonF
+from PySide6.QtGui import QColor, QFontMetricsF, QHelpEvent, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPolygonF
 from PySide6.QtWidgets import QToolTip, QWidget
 
 from app.chart.marks import draw_card, gas_mark, solid_pen
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Values
 from app.chart.value_ticks import value_ticks, value_word
 from app.look.theme import Theme
+
+_NOTE = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop | Qt.TextFlag.TextWordWrap
+_TALL = 1e6
 
 
 class AcidBaseMap(QWidget):
@@ -64,8 +67,16 @@ class AcidBaseMap(QWidget):
 
     def _plot(self, whole: QRectF) -> QRectF:
         px = self.theme.px
-        notes = len(self.spec.notes) if self.spec is not None else 0
-        return whole.adjusted(px(60), px(40), -px(76), -px(56 + 18 * notes))
+        notes = round(self._notes(whole.width()).height())
+        return whole.adjusted(px(60), px(40), -px(76), -px(56) - notes)
+
+    def _notes(self, width: float) -> QRectF:
+        """The room that the notes take in a width, from 0 down; a note goes on where it is longer than a line."""
+        if self.spec is None or not self.spec.notes:
+            return QRectF()
+        metrics = QFontMetricsF(self.theme.font(self.theme.type.caption))
+        room = QRectF(0, 0, max(width - self.theme.px(32), 1.0), _TALL)
+        return metrics.boundingRect(room, _NOTE, "\n".join(self.spec.notes))
 
     def _paint(self, painter: QPainter, whole: QRectF, chosen: int | None) -> None:
         if self.spec is None:
@@ -138,7 +149,12 @@ class AcidBaseMap(QWidget):
         painter.drawRect(QRectF(a, top, b - a, foot - top))
         painter.setFont(self.theme.font(self.theme.type.caption, bold=True))
         painter.setPen(QColor(self.theme.colours.ink))
-        painter.drawText(QRectF(a, top, b - a, foot - top), Qt.AlignmentFlag.AlignCenter, self.spec.normal_word)
+        metrics = painter.fontMetrics()
+        width, height = metrics.horizontalAdvance(self.spec.normal_word) + 2, metrics.height()
+        room = QRectF(a, top, b - a, foot - top)
+        if width > b - a or height > foot - top:  # over the box where there is no room in it
+            room = QRectF(max((a + b - width) / 2, plot.left()), top - height - 2, width, height)
+        painter.drawText(room, Qt.AlignmentFlag.AlignCenter, self.spec.normal_word)
 
     def _draw_line(self, painter: QPainter, plot: QRectF, line: MapLine) -> None:
         pen = solid_pen(self.theme.colours.edge, 1.0)
@@ -250,9 +266,9 @@ class AcidBaseMap(QWidget):
         painter.drawText(head, Qt.AlignmentFlag.AlignLeft, self.spec.ph_word)
         painter.setFont(theme.font(theme.type.caption))
         painter.setPen(QColor(c.ink_quiet))
-        for n, note in enumerate(self.spec.notes):
-            room = QRectF(whole.left() + px(16), plot.bottom() + px(50 + 18 * n), whole.width() - px(32), px(18))
-            painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, note)
+        high = self._notes(whole.width()).height()
+        room = QRectF(whole.left() + px(16), plot.bottom() + px(50), whole.width() - px(32), high)
+        painter.drawText(room, _NOTE, "\n".join(self.spec.notes))
 
     # picking
 

@@ -334,7 +334,7 @@ class LanePainter:
 
     def _state_word(self, lane: Lane, room: float) -> str:
         """The state's words, or the shorter ones: a value cut in the middle would be another value."""
-        font = self._font_for(lane.state_word, room, bold=True)
+        font = self.theme.font(self.theme.type.caption, bold=True)
         fits = QFontMetricsF(font).horizontalAdvance(lane.state_word) <= room
         return lane.state_word if fits or not lane.state_short else lane.state_short
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from html import escape
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QFrame,
@@ -33,6 +33,8 @@ from core.figures.gas_path import PathGas
 _SHOWN = (0, 1, 3, 4, 7)
 """The columns of the table that find room beside the map; all of them are in the table dialog."""
 _TIME, _SITE = 1, 2
+SHARE = 0.45
+"""Of the page's width, that its words take at most: with large text the map keeps its room."""
 
 
 class MapView(QWidget):
@@ -92,7 +94,19 @@ class MapView(QWidget):
         self._set_widths()
 
     def _set_widths(self) -> None:
-        self._side.setFixedWidth(self._theme.px(470))
+        self._side.setFixedWidth(min(self._theme.px(470), max(self._theme.px(280), round(self.width() * SHARE))))
+
+        self._make_room()
+
+    def _make_room(self) -> None:
+        """Classes broken to pieces tell nothing: where they have no room they stand over the table alone."""
+        last = len(_SHOWN) - 1
+        others = sum(self.table.sizeHintForColumn(c) for c in range(last))
+        self.table.setColumnHidden(last, self._side.width() - others < self._theme.px(140))
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._set_widths()
 
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
@@ -160,6 +174,7 @@ class MapView(QWidget):
         header = self.table.horizontalHeader()
         header.setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
         header.setSectionResizeMode(len(_SHOWN) - 1, QHeaderView.ResizeMode.Stretch)
+        self._make_room()
         self.table.resizeRowsToContents()
         self.table.blockSignals(False)
 
