@@ -12,19 +12,21 @@ from storage import schema as s
 from storage.chain import row_digest
 from storage.reading_ledger import ENTRY_COLUMNS, LAID_ANEW, ChunkRow, made_entry
 from storage.row_proofs import (
+    DOCUMENTS,
     EPISODE,
+    OPEN,
     Row,
     Total,
     check_header,
     checked_last,
     chunk_facts,
-    documents_kept,
     documents_total,
     not_as_written,
     policies_kept,
     policy_proof,
     proofs,
     source_told,
+    total_kept,
     whole_rows,
     with_batch,
 )
@@ -136,7 +138,8 @@ def _with_bytes(connection: sa.Connection, episode: str, wanted: dict[int, Row])
 def check_standing(connection: sa.Connection, since: Instant, head: int | None, named: Iterable[str]) -> None:
     """Hold the episodes that a ward is made of against what was written: none is missing, none is another.
 
-    `named` came by the index of ends; the table itself is asked too, so that a fault of either is seen.
+    `named` came by the index of ends; the table itself is asked too, so that a fault of either is seen, and those
+    that have not ended are added up.
 
     Raises:
         StoreError: `store.not_as_written`.
@@ -147,6 +150,11 @@ def check_standing(connection: sa.Connection, since: Instant, head: int | None, 
     scanned = sa.select(s.episode_now).where(sa.func.coalesce(_now.ended_at, _NEVER) > since)
     rows = {row[0]: list(row[1:]) for row in connection.execute(scanned)}
     kept = proofs(connection, rows)
+    standing = Total()
+    for episode, now in rows.items():
+        standing.add_open(episode, now)
+    if standing != total_kept(connection, OPEN):
+        raise not_as_written()
     if rows.keys() != set(named) or any(k not in kept or kept[k].now != now for k, now in rows.items()):
         raise not_as_written()
 
@@ -187,7 +195,7 @@ def check_documents(connection: sa.Connection) -> None:
     Raises:
         StoreError: `store.not_as_written`.
     """
-    if documents_total(connection) != documents_kept(connection):
+    if documents_total(connection) != total_kept(connection, DOCUMENTS):
         raise not_as_written()
 
 

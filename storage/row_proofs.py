@@ -10,7 +10,7 @@ from __future__ import annotations
 
 import json
 from collections import defaultdict
-from collections.abc import Collection, Iterable, Iterator, Mapping
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from hashlib import sha256
 from typing import Any
@@ -21,7 +21,7 @@ from storage import schema as s
 from storage.chain import batch_hash, last_batch, row_digest
 from storage.errors import StoreError, store_error
 
-COVERED, POLICIES, DOCUMENTS = "covered", "policies", "documents"
+COVERED, POLICIES, DOCUMENTS, OPEN = "covered", "policies", "documents", "open"
 EPISODE = "episode/"
 _AT_ONCE = 500
 _MODULUS = 1 << 256
@@ -44,6 +44,12 @@ class Total:
         """One row more: its digest, and what a read takes from another table with it."""
         self.rows += 1
         self.digests = (self.digests + int.from_bytes(_one(digest, beside))) % _MODULUS
+
+    def add_open(self, episode: str, now: Sequence[int | None], times: int = 1) -> None:
+        """One row more of the table of episodes (or, -1, one less), where the episode has not ended."""
+        if now and now[-1] is None:
+            self.rows += times
+            self.digests = (self.digests + times * int.from_bytes(_one(episode, list(now)))) % _MODULUS
 
     def add_all(self, other: Total) -> None:
         """The rows of another total more."""
@@ -100,14 +106,15 @@ def _proofs(found: Mapping[str, bytes]) -> dict[str, EpisodeProof]:
         raise not_as_written() from error
 
 
-def documents_kept(connection: sa.Connection) -> Total:
-    """What is kept of every document, and of what was written down with it."""
-    return _documents(_read(connection, (DOCUMENTS,)))
+def total_kept(connection: sa.Connection, name: str) -> Total:
+    """What is kept under a name: of every document and what was written down with it (`DOCUMENTS`), of every episode
+    that has not ended (`OPEN`)."""
+    return _total_of(_read(connection, (name,)), name)
 
 
-def _documents(found: Mapping[str, bytes]) -> Total:
+def _total_of(found: Mapping[str, bytes], name: str) -> Total:
     try:
-        return _total(json.loads(found[DOCUMENTS])) if DOCUMENTS in found else Total()
+        return _total(json.loads(found[name])) if name in found else Total()
     except (ValueError, TypeError) as error:
         raise not_as_written() from error
 
@@ -208,24 +215,29 @@ def note_batch(
     """
     sums = _of_batch(connection, header, rows)
     changed = sums.episodes.keys() | set(touched)
-    found = _read(connection, {COVERED, POLICIES, DOCUMENTS, *(EPISODE + e for e in changed)})
+    found = _read(connection, {COVERED, POLICIES, DOCUMENTS, OPEN, *(EPISODE + e for e in changed)})
     if (_covered(found) or 0) != header["first_seq"] - 1:
         connection.execute(sa.delete(s.cache))
         return
     old = _proofs(found)
     now = _index_rows(connection, changed)
     made = {COVERED: str(header["last_seq"]).encode()}
+    standing = _total_of(found, OPEN)
     for episode in changed:
         proof = old.get(episode) or EpisodeProof()
+        standing.add_open(episode, proof.now, -1)
         if episode in sums.episodes:
             proof.entries.add_all(sums.episodes[episode].entries)
             proof.chunks.add_all(sums.episodes[episode].chunks)
         proof.now = now.get(episode, [])
+        standing.add_open(episode, proof.now)
         made[EPISODE + episode] = proof.data()
+    if changed:
+        made[OPEN] = json.dumps(standing.kept()).encode()
     if sums.policies:
         made[POLICIES] = json.dumps(_policies(found) + sums.policies).encode()
     if sums.documents.rows:
-        total = _documents(found)
+        total = _total_of(found, DOCUMENTS)
         total.add_all(sums.documents)
         made[DOCUMENTS] = json.dumps(total.kept()).encode()
     _put(connection, made, found.keys())
@@ -288,10 +300,14 @@ def rebuilt(connection: sa.Connection) -> dict[str, bytes]:
     for row in whole_rows(connection, with_batch(s.policy).order_by(s.policy.c.seq)):
         sums.policies.append(policy_proof(row))
     sums.documents = documents_total(connection)
+    standing = Total()
     for found in connection.execute(sa.select(s.episode_now)):
         sums.episodes[found[0]].now = list(found[1:])
+        standing.add_open(found[0], found[1:])
     last = last_batch(connection)
     made = {EPISODE + episode: proof.data() for episode, proof in sums.episodes.items()}
+    if sums.episodes:
+        made[OPEN] = json.dumps(standing.kept()).encode()
     if sums.policies:
         made[POLICIES] = json.dumps(sums.policies).encode()
     if sums.documents.rows:

@@ -83,11 +83,11 @@ def test_figures_of_changed_rows_are_refused(path: Path, statement: str) -> None
         "DELETE FROM episode_now WHERE episode_id = 'E2'",
     ],
 )
-def test_no_ward_without_one_of_its_patients(path: Path, statement: str) -> None:
-    """Of one who is not even in the table of episodes, looking at all that was ever recorded tells."""
+@pytest.mark.parametrize("everything", [False, True])
+def test_no_ward_without_one_of_its_patients(path: Path, statement: str, everything: bool) -> None:
     tamper(path, statement)
     with Store.open(path, read_only=True) as store, pytest.raises(StoreError) as refused:
-        figures.of_ward(store, "AB", LATER, figures.WardRequest(LATER, everything=True))
+        figures.of_ward(store, "AB", LATER, figures.WardRequest(LATER, everything=everything))
     assert refused.value.message.key == "store.not_as_written"
 
 
