@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Final
 
+from app.look.formats import opened
 from app.policy.names import in_force
 from app.words import Reader, sentence
 from core.judgement.concern import UNCONFIRMED
@@ -91,9 +92,11 @@ def lever_sentence(message: Message, reader: Reader) -> str:
 
     >>> lever_sentence(Message("lever.review_epap", {"epap": 8.0, "limit": 8.0}), Reader())
     'EPAP 8 cmH2O: review before going past 8 cmH2O [from memory].'
+    >>> lever_sentence(Message("tidal_volume.leak_not_known"), Reader())
+    'Tidal volume doubtful: leak not known.'
     """
-    text, sure = sentence(message, reader), _sure_of(message.key)
-    return f"{text.rstrip('.')} [{reader.translate(sure)}]." if sure in UNCONFIRMED else text
+    text, sure = opened(sentence(message, reader)).rstrip("."), _sure_of(message.key)
+    return f"{text} [{reader.translate(sure)}]." if sure in UNCONFIRMED else f"{text}."
 
 
 def _sure_of(key: str) -> str:

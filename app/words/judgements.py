@@ -152,7 +152,8 @@ LEVERS: Final[dict[str, str]] = {
     "lever.leak_not_known": "Leak is not known.",
     "lever.leak_over_limit": "Leak {leak:0} L/min" + _TAKEN + " is over {limit:0} L/min.",
     "lever.leak_was_over_limit":
-        "Leak was over {limit:0} L/min in most minutes since {over_since:time}; now {leak:0} L/min" + _TAKEN + ".",
+        "Leak was over its limit in most minutes since {over_since:time}; now {leak:0} L/min" + _TAKEN +
+        ", within {limit:0} L/min.",
     "lever.leak_within_limit": "Leak {leak:0} L/min" + _TAKEN + " is within {limit:0} L/min.",
     "lever.little_mask_time":
         "Only {hours:hours} of the last {of_hours:hours} on the mask (at least {least:fraction} is aimed at).",

@@ -203,7 +203,8 @@ def test_a_leak_that_came_back_within_its_limit_is_not_called_over_it() -> None:
     more = "device leak 02:00 03:49 50 50\ndevice leak 03:49 04:00 20 20"
     mask = found(more, start=LEAKING, as_of="03:57")["mask"]
     told = said(mask, "leak_was_over_limit")
-    assert told.startswith("Leak was over 30 L/min in most minutes since 02:00; now 20 L/min (median from ")
+    assert told.startswith("Leak was over its limit in most minutes since 02:00; now 20 L/min (median from ")
+    assert told.endswith(", within 30 L/min.")
 
 
 def test_a_leak_without_a_known_limit_is_not_called_within_it() -> None:
