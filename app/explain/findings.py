@@ -15,7 +15,7 @@ from app.explain.figures import explain_score
 from app.figures.rows import doubts_of
 from app.look.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
 from app.look.theme import Tier, tier_word, verdict_of
-from app.policy.words import limits_words
+from app.policy.words import limits_words, population_words
 from app.telling.finding_names import due_name, lever_name, marker_name
 from app.telling.flag_spans import with_gaps
 from app.telling.headline import lost_gain, verdict_with_loss
@@ -75,7 +75,7 @@ class Explainer:
             return
         if told := limits_words(flag.marker, rule):
             yield translate("explain", "The marker's limits in this policy: {limits}.").format(limits=told)
-        yield translate("explain", "It applies to: {who}.").format(who=rule.population.replace("_", " "))
+        yield translate("explain", "It applies to: {who}.").format(who=population_words(rule.population))
 
     def _words_on(self, flag: FlagFigure) -> Iterator[str]:
         """What was said of the flag, and what weakens it."""

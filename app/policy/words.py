@@ -153,8 +153,7 @@ def _marker(key: str, rule: MarkerRule, told: list[PolicyDifference]) -> Rule:
         more.append(again.format(time=minutes(rule.gap_min)))
     old = translate("policy", "Shown as old after {time} without a new value")
     more.append(old.format(time=minutes(rule.stale_min)))
-    population = translate("policy", "everyone") if rule.population == "any" else rule.population
-    population = population.replace("copd", "COPD").replace("ards", "ARDS")
+    population = population_words(rule.population)
     limits = limits_words(key, rule)
     return Rule(path, group_name(rule.group), marker_name(key), rule.on, rule.tier, limits, population,
                 rule.source, rule.sure, tuple(more), _differs(path, told), rule.detail_sure)  # fmt: skip
@@ -200,6 +199,17 @@ def _plain(value: object) -> str:
     if isinstance(value, bool):
         return translate("policy", "yes") if value else translate("policy", "no")
     return trimmed(float(value), 3) if isinstance(value, int | float) else str(value)
+
+
+def population_words(population: str) -> str:
+    """Whom a marker is for, as it is read.
+
+    >>> population_words("any"), population_words("hypercapnic copd")
+    ('everyone', 'hypercapnic COPD')
+    """
+    if population == "any":
+        return translate("policy", "everyone")
+    return population.replace("copd", "COPD").replace("ards", "ARDS")
 
 
 def limits_words(key: str, rule: MarkerRule) -> str:
