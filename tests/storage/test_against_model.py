@@ -90,7 +90,7 @@ def test_changes_since_name_every_episode_whose_answer_differs(model: LedgerMode
                 assert before == now or episode in changed
 
 
-def test_the_hour_is_the_unit_of_overlap() -> None:
+def test_a_pause_hides_nothing() -> None:
     """A later file that covers two hours with a gap between does not wipe what an earlier one has in the gap."""
     with folder() as place, new_store(place, "a") as store:
         t = NOW + np.arange(5, dtype=np.int64) * HOUR

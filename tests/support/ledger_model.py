@@ -10,7 +10,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field, replace
 
 from core.record.entries import Action, NewEntry
-from core.record.instant import HOUR, Instant
+from core.record.instant import DAY, MINUTE, Instant
 
 Value = tuple[Instant, str, float | None, str | None, bool, bool]
 """At, channel, number, words, corrected, disputed."""
@@ -99,9 +99,9 @@ class LedgerModel:
                     laid = _shifted(laid, e)
             for block in b.blocks:
                 if (block.episode, block.channel) == (episode, channel):
-                    for hour in _by_hour(block.samples):
+                    for run in _without_pause(block.samples):
                         blocks += 1
-                        lay(laid, {t: Laid(v, block.source, blocks) for t, v in hour.items()})
+                        lay(laid, {t: Laid(v, block.source, blocks) for t, v in run.items()})
         return [(t, laid[t].value) for t in sorted(laid)]
 
 
@@ -123,11 +123,16 @@ def lay(laid: dict[Instant, Laid], fresh: dict[Instant, Laid]) -> None:
     laid.update(fresh)
 
 
-def _by_hour(samples: dict[Instant, float]) -> list[dict[Instant, float]]:
-    hours: dict[int, dict[Instant, float]] = {}
+def _without_pause(samples: dict[Instant, float]) -> list[dict[Instant, float]]:
+    """Samples that lie over older ones as one: until a pause of more than a quarter of an hour, or midnight UTC."""
+    runs: list[dict[Instant, float]] = []
+    before: Instant | None = None
     for t in sorted(samples):
-        hours.setdefault(t // HOUR, {})[t] = samples[t]
-    return list(hours.values())
+        if before is None or t - before > 15 * MINUTE or t // DAY != before // DAY:
+            runs.append({})
+        runs[-1][t] = samples[t]
+        before = t
+    return runs
 
 
 def _matches(sample: Laid, e: NewEntry) -> bool:
