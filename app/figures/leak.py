@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from app.figures.rows import FigureRow, RowInput, RowMaker
 from app.figures.values import slope_band, slope_text, span_text
 from app.look import formats
+from app.policy.names import in_force
 from app.telling.presumed import presumed_word
 from core.judgement.shapes import EpisodeFigures, LeakFigure
 from core.record.instant import MINUTE, Instant
@@ -111,8 +112,10 @@ def _adjustment(leak: LeakFigure, at: Instant, make: RowMaker) -> FigureRow:
         RowInput(make.tr("After"), _amount(after) or make.tr("not known"), at),
     )
     why = "" if both else make.tr("Leak not known on one side of the adjustment")
-    return FigureRow("leak_around_adjustment", make.tr("Leak around the last mask adjustment"), value, at, why=why,
-                     inputs=given)  # fmt: skip
+    span = formats.trimmed(in_force().trend.device_median_min.value)
+    notes = (make.tr("Medians of the {span} min before and after it").format(span=span),) if both else ()
+    return FigureRow("leak_around_adjustment", make.tr("Leak around the last mask adjustment"), value, at, "", notes,
+                     why, given)  # fmt: skip
 
 
 def _breaks(leak: LeakFigure, make: RowMaker) -> FigureRow:

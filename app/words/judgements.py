@@ -190,14 +190,15 @@ LEVERS: Final[dict[str, str]] = {
     "lever.qualified_person_decides": "A qualified person decides.",
     "lever.raise_ipap_alike": "Raise IPAP alike, or pressure support falls.",
     "lever.rate_above_backup":
-        "No effect: the patient's own rate is {own_rate:0}/min" + _RATE +
-        ", not below the backup rate of {reach:0}/min.",
+        "The patient's own rate is {own_rate:0}/min" + _RATE +
+        ", not below the backup rate of {reach:0}/min: it does not act.",
     "lever.rate_below_backup":
         "The patient's own rate, {own_rate:0}/min" + _RATE + ", is below the backup rate of {reach:0}/min.",
     "lever.rate_in_reach":
         "The patient's own rate, {own_rate:0}/min" + _RATE + ", is below {reach:0}/min: a backup rate can act.",
     "lever.rate_no_effect":
-        "No effect: the patient's own rate is {own_rate:0}/min" + _RATE + ", not below {reach:0}/min.",
+        "The patient's own rate is {own_rate:0}/min" + _RATE +
+        ", not below {reach:0}/min: a backup rate would not act.",
     "lever.review_epap": "EPAP {epap:trim} cmH2O: review before going past {limit:trim} cmH2O.",
     "lever.review_ipap": "IPAP {ipap:trim} cmH2O: review before going past {limit:trim} cmH2O.",
     "lever.review_ti": "Inspiratory time {ti:trim} s: review before going past {limit:trim} s.",

@@ -229,14 +229,14 @@ def test_the_saturation_of_a_lever_is_a_median_or_one_reading(more: str, told: s
 def test_the_rate_of_a_lever_is_counted_or_a_median() -> None:
     counted = found("03:50 rr 24")["backup_rate"]
     assert said(counted, "rate_no_effect") == (
-        "No effect: the patient's own rate is 24/min (counted at 03:50), not below 20/min."
+        "The patient's own rate is 24/min (counted at 03:50), not below 20/min: a backup rate would not act."
     )
     machine = found("device rr_total 03:00 04:01 14 14")["backup_rate"]
     assert said(machine, "rate_in_reach") == (
         "The patient's own rate, 14/min (median from 03:46 to 04:00), is below 20/min: a backup rate can act."
     )
     fast = found("03:50 rr 24", start="mode BPAP-ST ipap 16 epap 5 rate_set 24")["backup_rate"]
-    assert said(fast, "rate_above_backup").endswith("not below the backup rate of 24/min.")
+    assert said(fast, "rate_above_backup").endswith("not below the backup rate of 24/min: it does not act.")
 
 
 def test_a_high_tidal_volume_says_of_when_it_is_and_its_doubt() -> None:
