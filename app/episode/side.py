@@ -43,6 +43,7 @@ from app.telling.presumed import presumed_word, silent_word
 from app.ward.lane_words import anchor_name, open_flags
 from app.ward.ordering import OPEN_DUE
 from app.words import Reader, sentence
+from app.words.missing_inputs import why_missing
 from core.judgement.now import headline_response
 from core.judgement.policy import Policy
 from core.judgement.shapes import EpisodeFigures, FlagFigure, GasFigure, ResponseFigure, ScoreFigure
@@ -381,6 +382,7 @@ class _Facts:
         if score.missing:
             names = ", ".join(input_name(m, self.reader) for m in score.missing)
             yield translate("side", "missing: {names}").format(names=names)
+            yield from why_missing(score, self.reader)
         if score.population == "outside":
             yield translate("side", "outside its population")
         if score.at is not None:

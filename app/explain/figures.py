@@ -11,6 +11,7 @@ from app.figures.values import input_name, input_text
 from app.look.formats import opened, trimmed
 from app.telling.taken import when_words
 from app.words import Reader, sentence
+from app.words.missing_inputs import why_missing
 from core.figures.catalogue import figure
 from core.figures.catalogue_entry import FigureEntry
 from core.judgement.shapes import EpisodeFigures, ScoreFigure, ScoreInput
@@ -64,6 +65,7 @@ def explain_score(key: str, score: ScoreFigure, reader: Reader, now: Instant | N
     """A score with each input's value, time and points; bounds where inputs are missing; its population."""
     entry = figure(key)
     notes = [sentence(m, reader) for m in dict.fromkeys(score.reasons.values())]
+    notes += why_missing(score, reader)
     if score.missing:
         notes.append(reader.translate("Missing inputs are taken at their best and at their worst, never as normal."))
     notes += _of_entry(entry, reader)

@@ -10,6 +10,7 @@ from app.telling.presumed import presumed_word
 from app.telling.taken import taken_words
 from app.words import Reader, sentence
 from app.words.arm_words import arm_words, arms_agree
+from app.words.missing_inputs import missing_names, why_missing
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
 from app.words.verdict_loss import with_loss
@@ -320,19 +321,19 @@ class FigureLines:
             text = f"{shown} {formats.trimmed(s.points)}"
         else:
             low, high = formats.trimmed(s.lowest or 0.0), formats.trimmed(s.highest or 0.0)
-            names = ", ".join(quantity_name(m) for m in s.missing)
+            names = "; ".join((missing_names(s), *why_missing(s, self.reader)))
             text = f"{shown} {self.tr('between')} {low} {self.tr('and')} {high} ({self.tr('missing')}: {names})"
         if s.at is not None:
             text += f" {self.tr('at')} {self.reader.time(s.at)}"
-        if s.population == "outside":
-            text += f", {self.tr('outside its population')}"
+        if s.population == "outside" and not (s.caveat is not None and s.caveat.key.startswith("population.")):
+            text += f", {self.tr('outside its population')}"  # elsewhere the caveat says so, and why
         return text + (f". {formats.opened(sentence(s.caveat, self.reader))}" if s.caveat else "")
 
     def _risk_class(self, name: str, s: ScoreFigure) -> str:
         """A score that has no points: its class, what is missing, when it was taken."""
         text = f"{self.tr(name)}: {sentence(s.caveat, self.reader)}" if s.caveat else self.tr(name)
         if s.missing:
-            text += f" ({self.tr('missing')}: {', '.join(quantity_name(m) for m in s.missing)})"
+            text += f" ({self.tr('missing')}: {missing_names(s)})"
         if s.at is not None:
             text += f" {self.tr('at')} {self.reader.time(s.at)}"
         return text + (f", {self.tr('outside its population')}" if s.population == "outside" else "")

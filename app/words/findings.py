@@ -183,6 +183,9 @@ SCORES: Final[dict[str, str]] = {
     "rox.not_known": "ROX not known",
     "rox.too_early": "at {hours:hours} it is too early: cut-offs begin at {first_hours:0} h",
     "score.inputs_missing": "missing: {missing:list}",
+    "score.input_before_change":
+        "{channel:name} of {at:time} does not count: settings or mask changed at {changed_at:time}",
+    "score.input_too_old": "{channel:name} of {at:time} does not count: more than {limit_min:minutes} old",
     "score.no_gas": "no gas to score",
     "score.no_vitals": "no vital signs logged",
     "score.switched_off": "{score:name} is switched off in the policy",

@@ -39,6 +39,8 @@ class Found:
     at: Instant | None = None
     text: str | None = None
     median_of: tuple[Instant, Instant] | None = None
+    reason: Message | None = None
+    """Why there is none though an older one was logged."""
 
     @property
     def given(self) -> FigureInput:
@@ -114,29 +116,50 @@ def _typed(episode: Episode, series: Series, i: int) -> str | None:
     return entry.raw.replace(",", ".") if entry.raw and same_unit else None
 
 
-def nearest_word(episode: Episode, channel: str, at: Instant, within_min: float) -> Found:
-    """The newest word of a channel at or before a moment, if it is fresh."""
+def nearest_word(episode: Episode, channel: str, at: Instant, within_min: float, walls: Walls) -> Found:
+    """The newest word of a channel at or before a moment, if it is fresh and no wall lies between."""
     words = episode.text(channel)
     i = int(np.searchsorted(words.t, at, side="right")) - 1
-    if i < 0 or at - int(words.t[i]) > within_min * MINUTE:
+    if i < 0:
         return NOTHING
-    return Found(words.v[i], int(words.t[i]))
+    then = int(words.t[i])
+    reason = _not_taken(channel, then, at, within_min, walls)
+    return Found(words.v[i], then) if reason is None else Found(reason=reason)
+
+
+def _not_taken(channel: str, then: Instant, at: Instant, within_min: float, walls: Walls) -> Message | None:
+    """Why a value of before a moment does not count for it: too old, or a change since; None where it does."""
+    if at - then > within_min * MINUTE:
+        return Message("score.input_too_old", {"channel": channel, "at": then, "limit_min": within_min})
+    low, _ = _between_walls(at, walls)
+    return None if then >= low else Message("score.input_before_change", {"channel": channel, "at": then,
+                                                                        "changed_at": low - 1})  # fmt: skip
+
+
+def _nearest_or_why(episode: Episode, channel: str, at: Instant, within_min: float, walls: Walls) -> Found:
+    """The nearest value; where there is none, why the newest before it does not count."""
+    found = nearest(episode, channel, at, within_min, walls)
+    i = episode.number(channel).last_at_or_before(at) if found.value is None else -1
+    if i < 0:
+        return found
+    return Found(reason=_not_taken(channel, int(episode.number(channel).t[i]), at, within_min, walls))
 
 
 def rate_at(ctx: Context, at: Instant, walls: Walls) -> Found:
     """The respiratory rate: a counted one beats the machine's."""
     within = ctx.policy.freshness.of("rr")
-    counted = nearest(ctx.episode, "rr", at, within, walls)
-    return counted if counted.value is not None else nearest(ctx.episode, "rr_total", at, within, walls)
+    counted = _nearest_or_why(ctx.episode, "rr", at, within, walls)
+    machine = NOTHING if counted.value is not None else nearest(ctx.episode, "rr_total", at, within, walls)
+    return machine if machine.value is not None else counted
 
 
 def gas_inputs(ctx: Context, gas: GasFigure, walls: Walls) -> dict[str, Found]:
     """The five inputs of HACOR at a gas."""
     fresh = ctx.policy.freshness
     return {
-        "hr": nearest(ctx.episode, "hr", gas.at, fresh.of("hr"), walls),
+        "hr": _nearest_or_why(ctx.episode, "hr", gas.at, fresh.of("hr"), walls),
         "ph": Found(gas.ph, gas.at, gas.ph_text),
-        "gcs": nearest(ctx.episode, "gcs", gas.at, fresh.of("gcs"), walls),
+        "gcs": _nearest_or_why(ctx.episode, "gcs", gas.at, fresh.of("gcs"), walls),
         "pf": Found(gas.pf_mmHg, gas.at) if gas.pf_mmHg is not None else NOTHING,
         "rr": rate_at(ctx, gas.at, walls),
     }
@@ -186,9 +209,9 @@ def news2_latest(ctx: Context, walls: Walls) -> ScoreFigure:
 def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
     """NEWS2 at a moment. Scale 2 only where a clinician recorded it."""
     fresh = ctx.policy.freshness
-    found = {c: nearest(ctx.episode, c, at, fresh.of(c), walls) for c in ("spo2", "sbp", "hr", "temp")}
+    found = {c: _nearest_or_why(ctx.episode, c, at, fresh.of(c), walls) for c in ("spo2", "sbp", "hr", "temp")}
     found["rr"] = rate_at(ctx, at, walls)
-    found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.of("acvpu"))
+    found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.of("acvpu"), walls)
     now = ctx.settings.at(at)
     oxygen = breathes_oxygen(None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow)
     found["on_oxygen"] = Found("yes" if oxygen else "no", at) if oxygen is not None else NOTHING
@@ -223,7 +246,7 @@ def score_figure(
 ) -> ScoreFigure:
     """A pure score with the times of its inputs."""
     inputs = {
-        name: ScoreInput(_shown(part.value), (f := found.get(name, NOTHING)).at, part.points, f.median_of)
+        name: ScoreInput(_shown(part.value), (f := found.get(name, NOTHING)).at, part.points, f.median_of, f.reason)
         for name, part in score.parts.items()
     }
     why = dict(reasons)

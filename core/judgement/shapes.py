@@ -269,6 +269,8 @@ class ScoreInput:
     at: Instant | None = None
     points: float | None = None
     median_of: tuple[Instant, Instant] | None = None
+    reason: Message | None = None
+    """Why it is missing though an older value was logged."""
 
 
 @dataclass(frozen=True, slots=True)

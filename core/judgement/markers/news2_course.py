@@ -1,7 +1,8 @@
 """NEWS2 over the record: bounds at every set of observations, and a rise over the patient's own low.
 
 The points are those of `scores_news2`, for arrays. A set is three or more of the observed values at one moment; a
-value up to the policy's freshness before it fills in, and what is missing bounds the points and is never normal.
+value up to the policy's freshness before it fills in, none from before a change or a break (as in the score itself);
+what is missing bounds the points and is never normal.
 """
 
 from __future__ import annotations
@@ -14,6 +15,7 @@ import numpy as np
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Point, Spell, from_points
 from core.judgement.policy_sections import MarkerRule
+from core.judgement.score_inputs import Walls, barriers
 from core.judgement.scores_binning import half_up_array
 from core.judgement.scores_news2 import ACVPU, BINS, SCALE_1, SCALE_2_ON_AIR, SCALE_2_ON_OXYGEN, Bins
 from core.record.instant import HOUR, MINUTE
@@ -75,7 +77,18 @@ def _fresh(seen: Observed, channel: str, t: Times) -> Values:
     i = np.searchsorted(spots.t, t, side="right") - 1
     k = np.maximum(i, 0)
     fresh = (i >= 0) & (t - spots.t[k] <= int(seen.policy.freshness.of(channel) * MINUTE))
-    return np.where(fresh, spots.v[k], np.nan)
+    return np.where(fresh & _unparted(seen, spots.t[k], t), spots.v[k], np.nan)
+
+
+def _unparted(seen: Observed, before: Times, t: Times) -> Flags:
+    """Whether no change and no edge of a break lies between two moments; at its very moment a value is before it."""
+    walls = seen.once(_walls)
+    same: Flags = np.searchsorted(walls, before, side="left") == np.searchsorted(walls, t, side="left")
+    return same
+
+
+def _walls(seen: Observed) -> Walls:
+    return barriers(tuple(step.at for a in seen.ctx.anchors for step in a.steps), seen.ctx.support)
 
 
 def _points(bins: Bins, values: Values, decimals: int) -> Values:
@@ -98,7 +111,7 @@ def _consciousness(seen: Observed, t: Times) -> Values:
     i = np.searchsorted(words.t, t, side="right")
     at = np.concatenate(([0], words.t))[i]
     fresh = t - at <= int(seen.policy.freshness.of("acvpu") * MINUTE)
-    return np.where((i > 0) & fresh, points[i], np.nan)
+    return np.where((i > 0) & fresh & _unparted(seen, at, t), points[i], np.nan)
 
 
 def news2_rise(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:

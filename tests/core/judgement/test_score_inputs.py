@@ -45,8 +45,28 @@ def test_a_counted_rate_beats_the_machines_and_the_machines_is_a_median():
 
 def test_words_are_taken_from_before_only():
     e = episode("01:00 acvpu voice\n02:10 acvpu alert")
-    assert nearest_word(e, "acvpu", moment("02:00"), 240).value == "voice"
-    assert nearest_word(e, "acvpu", moment("05:30"), 60).value is None
+    assert nearest_word(e, "acvpu", moment("02:00"), 240, NO_WALLS).value == "voice"
+    assert nearest_word(e, "acvpu", moment("05:30"), 60, NO_WALLS).value is None
+
+
+def test_no_word_and_no_number_is_taken_across_a_change_and_the_reason_is_said():
+    """One rule for every input of every score: 4 h are as long as nothing changed in between."""
+    log = (
+        "01:00 mode bpap-st ipap 14 epap 6 fio2 50\n02:10 rr 30 spo2 90 bp 118/70 hr 110 gcs 14 acvpu voice temp 37\n"
+    )
+    log += "02:43 ipap 18\n02:50 rr 28 spo2 91 hr 108\n02:58 ph 7.38 paco2 38 pao2 70 site arterial"
+    ctx = context(log)
+    walls = np.array([moment("01:00"), moment("02:43")])
+    early, late = news2_latest(ctx, walls), hacor_at(ctx, ctx.gases[0], walls)
+    assert set(early.missing) == {"sbp", "temp", "acvpu"}
+    assert set(late.missing) == {"gcs"}
+    for part in (early.inputs["acvpu"], late.inputs["gcs"]):
+        assert part.reason is not None
+        assert part.reason.key == "score.input_before_change"
+        assert (part.reason.values["at"], part.reason.values["changed_at"]) == (moment("02:10"), moment("02:43"))
+    assert early.inputs["sbp"].reason.key == "score.input_too_old"  # 40 min are too long anyway
+    assert early.inputs["rr"].reason is None
+    assert set(news2_latest(context(log.replace("02:43 ipap 18\n", "")), walls[:1]).missing) == {"sbp", "temp"}
 
 
 HYPOXAEMIC = "01:00 mode bpap-st ipap 14 epap 6 fio2 50\n01:58 hr 128 rr 34 gcs 14\n"

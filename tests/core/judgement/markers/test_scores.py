@@ -125,3 +125,13 @@ def test_the_course_of_news2_is_the_score_at_every_set():
     for k, (rr, spo2, hr, sbp, temp, word) in enumerate(given):
         score = news2(rr=rr, spo2=spo2, hr=hr, sbp=sbp, temp=temp, acvpu=word, on_oxygen=oxygen, scale=2)
         assert course.low[k] == course.high[k] == score.points
+
+
+def test_the_course_of_news2_reaches_across_no_change_as_the_score_does_not():
+    log = COPD + START + "02:10 rr 24 spo2 90 hr 110 sbp 118 temp 37 acvpu confusion\n{}02:30 rr 24 spo2 90 hr 110\n"
+    for change, missing in (("", 0), ("02:20 ipap 22\n", 3)):
+        seen = Observed(ctx(log.format(change), "02:40"))
+        course = news2_course(seen)
+        score = seen.ctx.scores["news2"]
+        assert int((~course.known[-1]).sum()) == len(score.missing) == missing  # sbp, temp and acvpu
+        assert (course.low[-1], course.high[-1]) == (score.lowest, score.highest)
