@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from functools import cache
 from pathlib import Path
+from tempfile import TemporaryDirectory
 
 import numpy as np
 import pytest
@@ -32,12 +34,26 @@ def secret(request: pytest.FixtureRequest) -> str | None:
 
 @pytest.fixture
 def old(tmp_path: Path, secret: str | None) -> Path:
-    """A store with a backup of its first half; the second half holds all kinds of entries."""
-    path = tmp_path / "ward.luff"
+    """A store with a backup of its first half; the second half holds all kinds of entries. Filled once in a run, and
+    copied."""
+    for name, data in _filled(secret).items():
+        (tmp_path / name).write_bytes(data)
+    return tmp_path / "ward.luff"
+
+
+@cache
+def _filled(secret: str | None) -> dict[str, bytes]:
+    """Store and backup with their key files, by the file's name."""
+    with TemporaryDirectory() as folder:
+        _fill(Path(folder) / "ward.luff", secret)
+        return {path.name: path.read_bytes() for path in Path(folder).iterdir()}
+
+
+def _fill(path: Path, secret: str | None) -> None:
     with Store.create(path, now=NOW, passphrase=secret, cost=CHEAP) as store:
         for i in range(300):
             log(store, "E1", 20 + i % 9, NOW + i * MINUTE)
-        store.backup(tmp_path / "copy.luff")
+        store.backup(path.with_name("copy.luff"))
         first = log(store, "E1", 31, NOW + 400 * MINUTE)
         log(store, "E1", 32, NOW + 401 * MINUTE, action=Action.CORRECT, replaces=first, reason="misread")
         log(store, "E2", 18, NOW + 402 * MINUTE)
@@ -49,7 +65,6 @@ def old(tmp_path: Path, secret: str | None) -> Path:
         store.append([], by="dev", operation="take", now=NOW + 600 * MINUTE,
                      samples=[DeviceSamples("E2", "leak", "dev", t, np.arange(60.0), 0)])  # fmt: skip
         store.record_event("signed in", person="AB", now=NOW + 601 * MINUTE)
-    return path
 
 
 def compared(old: Path, secret: str | None):  # type: ignore[no-untyped-def]
@@ -113,7 +128,7 @@ def test_another_store_is_not_taken_for_the_old_one(old: Path, secret: str | Non
 def test_very_many_entries_are_counted_and_the_newest_told(tmp_path: Path) -> None:
     path = tmp_path / "ward.luff"
     with Store.create(path, now=NOW) as store:
-        store.backup(tmp_path / "copy.luff")
+        store.backup(path.with_name("copy.luff"))
         new = [NewEntry("E1", "rr", NOW + i, 20.0, None, str(i), "/min", 0) for i in range(MOST_TOLD + 50)]
         store.append(new, by="AB", operation="log", now=NOW)
     Store.restore(tmp_path / "copy.luff", tmp_path / "restored.luff")

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import random
+from functools import cache
 from pathlib import Path
+from tempfile import TemporaryDirectory
 
 import numpy as np
 import pytest
@@ -30,7 +32,26 @@ def rr(episode: str, i: int, action: Action = Action.ASSERT, replaces: str = "")
 
 
 def ward(path: Path, passphrase: str | None) -> dict[str, list[Told]]:
-    """A store with entries, corrections, samples, a document and a layout; what it holds of each episode."""
+    """A store with entries, corrections, samples, a document and a layout; what it holds of each episode.
+
+    It is filled once in a run, and copied.
+    """
+    store, envelope, truth = _ward(passphrase)
+    path.write_bytes(store)
+    if envelope is not None:
+        envelope_path(path).write_bytes(envelope)
+    return dict(truth)
+
+
+@cache
+def _ward(passphrase: str | None) -> tuple[bytes, bytes | None, dict[str, list[Told]]]:
+    with TemporaryDirectory() as folder:
+        path = Path(folder) / "a.luff"
+        truth = _filled(path, passphrase)
+        return path.read_bytes(), envelope_path(path).read_bytes() if passphrase else None, truth
+
+
+def _filled(path: Path, passphrase: str | None) -> dict[str, list[Told]]:
     t = NOW + np.arange(120, dtype=np.int64) * MINUTE
     with Store.create(path, passphrase=passphrase, now=NOW, cost=CHEAP) as store:
         store.put_policy("text of a policy", "00" * 32, "AB", NOW)
