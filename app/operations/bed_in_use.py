@@ -18,8 +18,9 @@ def label_questions(store: Store, key: str, readings: Sequence[Reading]) -> tupl
     given = {_alike(r.words) for r in readings if r.channel.key == "label" and r.words}
     if not given:
         return ()
-    others = [shelf_of(store).get(store, k) for k in store.open_episode_keys() if k != key]
-    taken = [o for o in others if o.standing and _alike(o.label) in given]
+    shelf = shelf_of(store)
+    others = (shelf.get_if_sound(store, k) for k in store.open_episode_keys() if k != key)
+    taken = [o for o in others if o is not None and o.standing and _alike(o.label) in given]
     return tuple(
         Message("doubt.label_in_use", {"label": o.label, "episode": o.key, "since": o.first_at}) for o in taken
     )

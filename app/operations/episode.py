@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 from app.operations import policy
 from app.operations.bed_in_use import label_questions
 from app.operations.entry_questions import check_target
-from app.operations.episode_shelf import shelf_of
+from app.operations.episode_shelf import OF_ONE_EPISODE, shelf_of
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded, append
 from core.judgement.entry_doubts import gas_doubts
@@ -29,8 +29,6 @@ if TYPE_CHECKING:
     from storage.store import Store
 
 MOST_KEY = 60
-OF_ONE_EPISODE = frozenset({"store.episode_not_as_written", "store.damaged_chunk"})
-"""Damage that is found in the record of one episode and says nothing of others."""
 _NUMBER_UNIT = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))\s*(.*)")
 
 

@@ -7,10 +7,13 @@ from typing import TYPE_CHECKING
 
 from core.figures.stage_cache import StageCache
 from core.record.episode import Episode
+from storage.errors import StoreError
 
 if TYPE_CHECKING:
     from storage.store import Store
 
+OF_ONE_EPISODE = frozenset({"store.episode_not_as_written", "store.damaged_chunk"})
+"""Damage that is found in the record of one episode and says nothing of others."""
 _MOST = 200
 """Some 0.5 MB each for three days of one-minute device data."""
 
@@ -35,6 +38,19 @@ class EpisodeShelf:
                 self._kept.popitem(last=False)
         self._kept.move_to_end(key)
         return found
+
+    def get_if_sound(self, store: Store, key: str) -> Episode | None:
+        """The same; None where what a damaged store keeps of this one episode is not what was written.
+
+        Raises:
+            StoreError: damage that is not of one episode alone.
+        """
+        try:
+            return self.get(store, key)
+        except StoreError as error:
+            if error.message.key not in OF_ONE_EPISODE:
+                raise
+            return None
 
     def _forget_changed(self, store: Store) -> None:
         if self._head < 0:

@@ -7,6 +7,7 @@ import pytest
 from app.cli import main
 from app.operations import backup as operations
 from app.operations.backup import Rotation
+from app.operations.episode import BeginRequest, begin
 from core.record.instant import HOUR
 from storage.backup_rotation import backups_in
 from storage.store import Store
@@ -41,6 +42,10 @@ def test_a_bed_of_changed_rows_is_missing_and_named_and_the_others_stand(qtbot, 
         assert list(window.feed.answers) == ["bed-3"]
         assert "Missing from the ward: bed-7." in window.keeping.notices.plain()
         assert list(window.keeping.notices.ways) == ["restore", "salvage"]
+        window.select("bed-3")  # who is sound is logged for as ever, a new bed with its name among it
+        head = window.model.session.head
+        window.model.ask(begin, BeginRequest("bed-9", {"label": "Bed 9"}, NOW, ZONE))
+        until(qtbot, lambda: window.model.session.head > head and "bed-9" in window.feed.answers)
         window.feed._all_wanted = True
         window.feed._ask()
         settled(qtbot, window)
