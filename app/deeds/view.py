@@ -8,7 +8,8 @@ from PySide6.QtWidgets import QApplication
 
 from app.deeds.doer import Doer
 from app.ward.lane_words import open_flags
-from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, LeverFigure, ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, LeverFigure
 
 if TYPE_CHECKING:
     from app.explain.explanation import Explanation

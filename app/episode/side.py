@@ -46,7 +46,8 @@ from app.words import Reader, sentence
 from app.words.missing_inputs import why_missing
 from core.judgement.now import headline_response
 from core.judgement.policy import Policy
-from core.judgement.shapes import EpisodeFigures, FlagFigure, GasFigure, ResponseFigure, ScoreFigure
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import EpisodeFigures, FlagFigure, GasFigure, ScoreFigure
 from core.record.instant import MINUTE
 
 SCORE_NAMES = {

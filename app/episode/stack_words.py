@@ -19,7 +19,7 @@ from app.telling.headline import in_doubt, lost_gain, response_state_word, sign_
 from app.telling.later_words import later_word
 from app.telling.phrases import change_sentence, change_word, channel_name, known, oxygen_word, state_of, translate
 from app.ward.lane_words import anchor_name
-from core.judgement.shapes import ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
 from core.record.channels import Group, by_group
 from core.record.instant import HOUR, MINUTE, Instant
 

@@ -23,7 +23,8 @@ from app.telling.headline import headline, state_now
 from app.telling.phrases import translate
 from app.ward.lane_words import indication_word
 from app.words import Reader
-from core.judgement.shapes import GasFigure, ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import GasFigure
 from core.record.instant import MINUTE, Instant
 
 TIGHT = 440

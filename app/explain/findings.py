@@ -25,15 +25,8 @@ from app.words import Reader, sentence
 from core.judgement.gas_reading import read
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import Limit
-from core.judgement.shapes import (
-    DueFigure,
-    FlagFigure,
-    GasFigure,
-    JudgedGas,
-    LeverFigure,
-    ResponseFigure,
-    ScoreFigure,
-)
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import DueFigure, FlagFigure, GasFigure, LeverFigure, ScoreFigure
 from core.record.instant import Instant
 
 translate = QCoreApplication.translate

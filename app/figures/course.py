@@ -8,7 +8,8 @@ from collections.abc import Iterator
 from app.figures.rows import FigureRow, RowInput, RowMaker, with_lines
 from app.figures.values import span_text
 from app.look import formats
-from core.judgement.shapes import CourseValue, EpisodeFigures, ExpectedCO2
+from core.judgement.response_shapes import CourseValue
+from core.judgement.shapes import EpisodeFigures, ExpectedCO2
 
 
 def course_rows(f: EpisodeFigures, make: RowMaker) -> Iterator[FigureRow]:

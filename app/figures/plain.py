@@ -17,7 +17,8 @@ from app.words import Reader, sentence
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
 from core.judgement.concern import UNCONFIRMED
-from core.judgement.shapes import EpisodeFigures, ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import EpisodeFigures
 from core.record.channels import CHANNELS, Kind
 
 _HIDDEN = frozenset({"label", "plan", "agreed_with", "breaks_and_night", "jobs", "handover_remark"})

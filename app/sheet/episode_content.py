@@ -18,7 +18,8 @@ from app.telling.lever_words import asks, lever_reasons
 from app.words import sentence
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
-from core.judgement.shapes import EpisodeFigures, FlagFigure, Step
+from core.judgement.response_shapes import Step
+from core.judgement.shapes import EpisodeFigures, FlagFigure
 
 MOST_LATER = 8
 """Values that came later are listed up to so many for each episode."""

@@ -9,7 +9,8 @@ from app.telling.language import in_language as tr
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
-from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import GasFigure
 
 PLUS_MINUS = "+/\N{MINUS SIGN}"
 HEADINGS = (

@@ -24,7 +24,8 @@ from app.telling.presumed import silent_word
 from app.ward.ordering import GAS
 from app.words import sentence
 from core.figures.shift import ShiftFigures
-from core.judgement.shapes import EpisodeFigures, FlagFigure, ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import EpisodeFigures, FlagFigure
 
 
 class WardWriter(SheetWriter):

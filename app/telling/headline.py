@@ -15,7 +15,8 @@ from app.telling.gas_doubt import state_in_doubt
 from app.telling.phrases import state_of, translate
 from app.words.verdict_loss import LOST_SINCE, with_loss
 from core.judgement.now import headline_response
-from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import EpisodeFigures, GasFigure
 from core.record.message import Message
 
 _DECIDES = frozenset({

@@ -42,7 +42,8 @@ from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due
 from app.ward.state_words import state_short, state_word
 from app.words import Reader, sentence
-from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, JudgedGas, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure
 from core.record.instant import MINUTE, Instant
 
 translate = QCoreApplication.translate

@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from app.words.template import Reader, quantity_name
-from core.judgement.shapes import JudgedGas
+from core.judgement.response_shapes import JudgedGas
 
 _OVER_CORRECTION = "over-correction"
 """From a high PaCO2 without acidosis too: always told."""

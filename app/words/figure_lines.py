@@ -14,18 +14,16 @@ from app.words.missing_inputs import missing_names, why_missing
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
 from app.words.verdict_loss import with_loss
+from core.judgement.response_shapes import JudgedGas, ResponseFigure, Step
 from core.judgement.shapes import (
     DueFigure,
     EpisodeFigures,
     FlagFigure,
     GasFigure,
-    JudgedGas,
     LeakFigure,
     RatioFigure,
     Reasons,
-    ResponseFigure,
     ScoreFigure,
-    Step,
     SupportFigure,
 )
 from core.record.instant import Instant

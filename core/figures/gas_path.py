@@ -10,7 +10,8 @@ from dataclasses import dataclass
 
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
 from core.judgement.gas_reading import GasReading, read
-from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import EpisodeFigures, GasFigure
 
 
 @dataclass(frozen=True, slots=True)

@@ -13,8 +13,9 @@ from typing import Final
 from core.figures.episode_figures import episode_figures, gas_stage, record_stage
 from core.judgement.leak_trend import leak_figure
 from core.judgement.policy import Policy
+from core.judgement.response_shapes import ResponseFigure, Step
 from core.judgement.setting_change import changed
-from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, LeakFigure, ResponseFigure, Step
+from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, LeakFigure
 from core.record.channels import CHANNELS, Group
 from core.record.episode import Episode, Words
 from core.record.instant import HOUR, Instant

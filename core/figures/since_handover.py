@@ -10,15 +10,8 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import Final
 
-from core.judgement.shapes import (
-    DueFigure,
-    EpisodeFigures,
-    FlagFigure,
-    GasFigure,
-    ResponseFigure,
-    Step,
-    SupportFigure,
-)
+from core.judgement.response_shapes import ResponseFigure, Step
+from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure, SupportFigure
 from core.record.instant import Instant
 
 OPEN: Final = frozenset({"raised", "seen"})

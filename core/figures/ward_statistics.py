@@ -17,7 +17,8 @@ from core.figures.episode_figures import episode_figures
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import Limit
-from core.judgement.shapes import EpisodeFigures, GasFigure, ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import EpisodeFigures, GasFigure
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant, minutes_between
 from core.record.settings import SettingsInForce

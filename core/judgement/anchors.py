@@ -13,6 +13,7 @@ import numpy as np
 
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import ResponseRules
+from core.judgement.response_shapes import Step
 from core.judgement.setting_change import (
     CO2,
     OXYGEN,
@@ -24,7 +25,6 @@ from core.judgement.setting_change import (
     oxygen_recorded,
     support_word,
 )
-from core.judgement.shapes import Step
 from core.judgement.vitals_near import VitalsNear
 from core.record.episode import Episode
 from core.record.instant import MINUTE, Instant

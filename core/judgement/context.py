@@ -12,13 +12,8 @@ from functools import cached_property
 
 from core.judgement.anchors import Anchor
 from core.judgement.policy import Policy
-from core.judgement.shapes import (
-    GasFigure,
-    LeakFigure,
-    RatioFigure,
-    ResponseFigure,
-    ScoreFigure,
-)
+from core.judgement.response_shapes import ResponseFigure
+from core.judgement.shapes import GasFigure, LeakFigure, RatioFigure, ScoreFigure
 from core.record.channels import HYPERCAPNIC_RISK
 from core.record.episode import Episode
 from core.record.instant import Instant

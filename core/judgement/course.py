@@ -24,7 +24,8 @@ from core.judgement.context import Context
 from core.judgement.policy import Policy
 from core.judgement.response_baseline import minute
 from core.judgement.response_noise import paco2_noise, ph_noise
-from core.judgement.shapes import CourseValue, GasFigure, ResponseFigure
+from core.judgement.response_shapes import CourseValue, ResponseFigure
+from core.judgement.shapes import GasFigure
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 from core.record.samples import Times, Values

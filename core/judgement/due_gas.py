@@ -15,7 +15,8 @@ from core.judgement.due_item import Item
 from core.judgement.markers.observed import Observed
 from core.judgement.policy_sections import DueRule
 from core.judgement.response_noise import direction, rr_noise
-from core.judgement.shapes import GasFigure, ResponseFigure, Step
+from core.judgement.response_shapes import ResponseFigure, Step
+from core.judgement.shapes import GasFigure
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
 

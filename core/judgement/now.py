@@ -7,7 +7,8 @@ from collections.abc import Iterable
 from core.judgement import arms
 from core.judgement.context import Context
 from core.judgement.markers.observed import Observed
-from core.judgement.shapes import GasFigure, JudgedGas, NowFigure, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import GasFigure, NowFigure
 from core.judgement.support_findings import last_logged
 
 

@@ -28,8 +28,9 @@ from core.judgement.response_baseline import (
     venous_baseline,
 )
 from core.judgement.response_headline import Headline, headline
+from core.judgement.response_shapes import JudgedGas, ResponseFigure, SinceStart, Step
 from core.judgement.response_since import Earlier, StartBaseline, difference, since_start
-from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure, SinceStart, Step
+from core.judgement.shapes import GasFigure
 from core.judgement.stretches import stretch_around, stretch_before
 from core.judgement.vitals_near import Found, VitalsNear
 from core.record.instant import MINUTE, Instant

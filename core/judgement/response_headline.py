@@ -8,7 +8,8 @@ from core.judgement import arms
 from core.judgement.anchors import Anchor
 from core.judgement.context import Context
 from core.judgement.response_baseline import VENOUS, Baseline
-from core.judgement.shapes import GasFigure, JudgedGas
+from core.judgement.response_shapes import JudgedGas
+from core.judgement.shapes import GasFigure
 from core.record.instant import Instant
 from core.record.message import Message
 

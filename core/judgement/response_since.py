@@ -9,7 +9,8 @@ from core.judgement import response_reasons as why
 from core.judgement.arms import Oxygenation
 from core.judgement.policy import Policy
 from core.judgement.response_noise import direction, pf_noise, ph_noise
-from core.judgement.shapes import GasFigure, SinceStart
+from core.judgement.response_shapes import SinceStart
+from core.judgement.shapes import GasFigure
 from core.record.message import Message
 
 

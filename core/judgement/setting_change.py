@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from math import isnan
 
-from core.judgement.shapes import Step
+from core.judgement.response_shapes import Step
 from core.record.instant import Instant
 from core.record.message import Message, Value
 from core.record.settings import Settings

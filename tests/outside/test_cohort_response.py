@@ -12,7 +12,7 @@ import pytest
 
 from core.judgement.anchors import find_anchors
 from core.judgement.response import judge_responses
-from core.judgement.shapes import ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
 from tests.support.log_cases import context
 
 NEXT_DAY = """

@@ -17,7 +17,8 @@ from dataclasses import dataclass
 from statistics import median
 
 from core.figures.episode_figures import episode_figures
-from core.judgement.shapes import EpisodeFigures, JudgedGas
+from core.judgement.response_shapes import JudgedGas
+from core.judgement.shapes import EpisodeFigures
 from core.record.instant import MINUTE
 from sample_data.cohort import LAST_MINUTE, SCENARIOS, SimulatedEpisode, simulate_many
 from tests.support.simulated import POLICY, START, as_episode, instant

@@ -2,18 +2,16 @@
 
 from __future__ import annotations
 
+from core.judgement.response_shapes import JudgedGas, ResponseFigure, Step
 from core.judgement.shapes import (
     Concern,
     DueFigure,
     EpisodeFigures,
     FlagFigure,
-    JudgedGas,
     LeverFigure,
     RatioFigure,
-    ResponseFigure,
     ScoreFigure,
     ScoreInput,
-    Step,
     SupportFigure,
 )
 from core.record.message import Message

@@ -3,16 +3,8 @@ so that a screen can be judged before and apart from the judgement behind it. No
 
 from __future__ import annotations
 
-from core.judgement.shapes import (
-    Concern,
-    DueFigure,
-    EpisodeFigures,
-    FlagFigure,
-    JudgedGas,
-    ResponseFigure,
-    Step,
-    SupportFigure,
-)
+from core.judgement.response_shapes import JudgedGas, ResponseFigure, Step
+from core.judgement.shapes import Concern, DueFigure, EpisodeFigures, FlagFigure, SupportFigure
 from core.record.instant import HOUR
 from core.record.message import Message
 from tests.support.invented_failing import failing

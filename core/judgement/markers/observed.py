@@ -15,7 +15,8 @@ from core.judgement.context import Context
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
 from core.judgement.policy import Policy
 from core.judgement.probable_breaks import in_any, probable_breaks
-from core.judgement.shapes import GasFigure, JudgedGas, ResponseFigure, SinceStart
+from core.judgement.response_shapes import JudgedGas, ResponseFigure, SinceStart
+from core.judgement.shapes import GasFigure
 from core.judgement.vitals_near import Found, VitalsNear
 from core.record.channels import HYPERCAPNIC_RISK
 from core.record.episode import Episode, Series

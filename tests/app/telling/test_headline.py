@@ -17,7 +17,8 @@ from app.telling.headline import (
 )
 from app.words import Reader
 from app.words.figure_lines import FigureLines
-from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, NowFigure, ResponseFigure, SupportFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import EpisodeFigures, GasFigure, NowFigure, SupportFigure
 from core.record.message import Message
 from tests.support.sample_ward import sample_ward
 

@@ -10,7 +10,8 @@ from app.session.readers import reader_at
 from app.telling.support_course import course_of
 from app.ward.flag_column import short_flags
 from app.ward.lane_words import LaneWords, OnWard, anchor_name
-from core.judgement.shapes import NowFigure, ResponseFigure, Step
+from core.judgement.response_shapes import ResponseFigure, Step
+from core.judgement.shapes import NowFigure
 from core.record.instant import HOUR
 from tests.support.invented_ward import (
     NOW,

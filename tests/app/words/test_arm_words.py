@@ -7,7 +7,7 @@ from app.words.arm_words import arm_words
 from app.words.figure_lines import FigureLines
 from core.figures.episode_figures import episode_figures
 from core.judgement.policy import shipped_policy
-from core.judgement.shapes import ResponseFigure
+from core.judgement.response_shapes import ResponseFigure
 from tests.support.log_cases import at, episode
 
 READER = Reader()

@@ -10,7 +10,8 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from core.judgement.shapes import EpisodeFigures, GasFigure, JudgedGas, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
+from core.judgement.shapes import EpisodeFigures, GasFigure
 from tests.support import plain_due, plain_scores
 from tests.support.plain_record import Gas, Log
 from tests.support.plain_rules import Judged, Response, responses, since_start

@@ -8,7 +8,7 @@ import pytest
 from core.judgement.anchors import find_anchors
 from core.judgement.course import at_minutes, course_band, course_cuts, course_gases, with_courses
 from core.judgement.response import judge_responses
-from core.judgement.shapes import CourseValue
+from core.judgement.response_shapes import CourseValue
 from sample_data.cohort import SCENARIOS
 from tests.support.fit_course import HELD_OUT, USED, residuals
 from tests.support.log_cases import at, context

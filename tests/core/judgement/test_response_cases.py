@@ -14,7 +14,7 @@ import pytest
 
 from core.judgement.anchors import find_anchors
 from core.judgement.response import judge_responses
-from core.judgement.shapes import JudgedGas, ResponseFigure
+from core.judgement.response_shapes import JudgedGas, ResponseFigure
 from tests.support.log_cases import at, context
 
 CASES = Path(__file__).parent / "cases"
