@@ -5,9 +5,10 @@ from __future__ import annotations
 import numpy as np
 
 from core.figures.episode_figures import record_stage
-from core.judgement.device_medians import medians
+from core.judgement.device_medians import medians, with_newest
 from core.judgement.policy import Policy
 from core.judgement.probable_breaks import in_any
+from core.judgement.trend import same_since
 from core.record.episode import Episode
 from core.record.instant import MINUTE, Instant
 from core.record.samples import Flags, Times, Values
@@ -23,7 +24,9 @@ def sf_course(episode: Episode, until: Instant, policy: Policy) -> tuple[Times, 
     series = ctx.episode.number("spo2")
     series = series.cut(np.isfinite(series.v)) if len(series) else series
     spot, fio2 = series.spots, ctx.settings.fio2
-    bins = medians(series.machine.t, series.machine.v, int(policy.trend.device_median_min.value * MINUTE))
+    machine, span = series.machine, int(policy.trend.device_median_min.value * MINUTE)
+    bins = medians(machine.t, machine.v, span)
+    bins = with_newest(bins, machine.t, machine.v, span, same_since(machine.t, fio2))
     first: Values = fio2.on(bins.first)
     same: Flags = first == fio2.on(bins.last)
     t = np.concatenate((spot.t, bins.last))

@@ -42,6 +42,26 @@ def medians(t: Times, v: Values, span: Instant) -> Medians:
     return Medians(bins[starts], t[starts], t[ends - 1], t[0] + offset, middle)
 
 
+def with_newest(bins: Medians, t: Times, v: Values, span: Instant, not_before: Instant = 0) -> Medians:
+    """The same, its last bin taken as the last `span` up to the newest sample, from `not_before` on.
+
+    A bin that has just begun would give the median of a breath or two as the newest value of all.
+
+    >>> t, v = np.arange(0, 21, 2), np.array([1.0] * 10 + [9.0])
+    >>> with_newest(medians(t, v, 10), t, v, 10).v.tolist(), medians(t, v, 10).v.tolist()
+    ([1.0, 1.0, 1.0], [1.0, 1.0, 9.0])
+    """
+    known = np.isfinite(v)
+    t, v = t[known], v[known]
+    if not t.size:
+        return bins
+    i = int(np.searchsorted(t, max(int(t[-1]) - span + 1, not_before)))
+    mean = int(t[i]) + int((t[i:] - t[i]).sum()) // (t.size - i)
+    newest = (t[-1] // span, t[i], t[-1], mean, _middle(v[i:]))
+    older = (bins.bin, bins.first, bins.last, bins.t, bins.v)
+    return Medians(*(np.concatenate((old[:-1], [new])) for old, new in zip(older, newest, strict=True)))
+
+
 def _middles(v: Values, bins: Times, starts: Times, size: Times) -> Values:
     """The median of each bin. Bins of one size, as a device writes them, are sorted as the rows of a table."""
     inner = size[1:-1]

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from core.judgement.context import Context
 from core.judgement.derived import FigureInput
-from core.judgement.device_medians import Medians, medians
+from core.judgement.device_medians import Medians, medians, with_newest
 from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.score_inputs import Walls, barriers, nearest
 from core.judgement.shapes import RatioFigure
@@ -24,6 +24,7 @@ from core.record.episode import Series
 from core.record.instant import HOUR, MINUTE, Instant
 from core.record.message import Message
 from core.record.samples import Flags, Times, Values
+from core.record.settings import Steps
 
 NO_WALLS: Walls = np.empty(0, np.int64)
 ROX_CAVEAT = Message("trend.rox_validated_in_high_flow")
@@ -127,8 +128,8 @@ def saturation_points(ctx: Context) -> Saturations:
     series = _finite(ctx.episode.number("spo2"))
     machine = series.machine
     recent = machine.between(span_start(ctx), ctx.as_of)
-    spot, bins = series.spots, _bins(ctx, recent if len(recent) else machine)
-    fio2 = ctx.settings.fio2
+    samples, fio2 = recent if len(recent) else machine, ctx.settings.fio2
+    spot, bins = series.spots, _bins(ctx, samples, same_since(samples.t, fio2))
     from_bins: Values = fio2.on(bins.first)
     same: Flags = from_bins == fio2.on(bins.last)
     t = np.concatenate((spot.t, bins.last))
@@ -144,8 +145,19 @@ def _finite(series: Series) -> Series:
     return series.cut(np.isfinite(series.v)) if len(series) else series
 
 
-def _bins(ctx: Context, series: Series) -> Medians:
-    return medians(series.t, series.v, int(ctx.policy.trend.device_median_min.value * MINUTE))
+def same_since(t: Times, fio2: Steps) -> Instant:
+    """From which of the samples at `t` on FiO2 was what it is at the newest; 0 where it never was another."""
+    if not t.size:
+        return 0
+    given = fio2.on(t)
+    other = np.flatnonzero(~((given == given[-1]) | (np.isnan(given) & np.isnan(given[-1]))))
+    return int(t[other[-1] + 1]) if other.size else 0
+
+
+def _bins(ctx: Context, series: Series, not_before: Instant = 0) -> Medians:
+    """15-min medians; the newest is of the last 15 min, never of a quarter of an hour that has just begun."""
+    span = int(ctx.policy.trend.device_median_min.value * MINUTE)
+    return with_newest(medians(series.t, series.v, span), series.t, series.v, span, not_before)
 
 
 def _sf(ctx: Context, points: Saturations) -> RatioFigure:
@@ -199,9 +211,10 @@ def _rate_given(ctx: Context, rate: float, at: Instant, walls: Walls) -> FigureI
     if near.at is not None and near.median_of is None and near.value == rate:
         return FigureInput(rate, near.at)
     span = int(ctx.policy.trend.device_median_min.value * MINUTE)
-    quarter = _machine_rate(ctx).between(at // span * span, at // span * span + span - 1)
-    several = len(quarter) > 1
-    return FigureInput(rate, at, (int(quarter.t[0]), int(quarter.t[-1])) if several else None)
+    bins = _rate_bins(ctx, np.array([at], np.int64), walls)
+    k = int(np.searchsorted(bins.bin, at // span))
+    several = bins.first[k] != bins.last[k]
+    return FigureInput(rate, at, (int(bins.first[k]), int(bins.last[k])) if several else None)
 
 
 def rates_at(ctx: Context, times: Times, walls: Walls = NO_WALLS) -> Values:
@@ -216,11 +229,19 @@ def rates_at(ctx: Context, times: Times, walls: Walls = NO_WALLS) -> Values:
     machine = _machine_rate(ctx)
     if len(machine) and times.size:
         span = int(ctx.policy.trend.device_median_min.value * MINUTE)
-        bins = _bins(ctx, machine.between(int(times[0]) // span * span, int(times[-1]) + span))
+        bins = _rate_bins(ctx, times, walls)
         if bins.bin.size:
             i = np.minimum(np.searchsorted(bins.bin, times // span), bins.bin.size - 1)
             out = np.where(np.isnan(out) & (bins.bin[i] == times // span), bins.v[i], out)
     return out
+
+
+def _rate_bins(ctx: Context, times: Times, walls: Walls) -> Medians:
+    """The machine's rate in the quarters of an hour of `times` (in order), none of the newest from across a wall."""
+    span = int(ctx.policy.trend.device_median_min.value * MINUTE)
+    machine = _machine_rate(ctx).between(int(times[0]) // span * span - span, int(times[-1]) + span)
+    before = walls[: int(np.searchsorted(walls, machine.t[-1]))] if len(machine) else walls[:0]
+    return _bins(ctx, machine, int(before[-1]) + 1 if before.size else 0)
 
 
 def _machine_rate(ctx: Context) -> Series:

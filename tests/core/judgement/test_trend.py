@@ -137,3 +137,32 @@ def test_medians_of_regular_samples_agree_with_numpy() -> None:
     v = np.cos(t * 0.9)
     wanted = [float(np.median(v[t // 15 == b])) for b in np.unique(t // 15)]
     assert medians(t, v, 15).v.tolist() == pytest.approx(wanted)
+
+
+def test_the_newest_median_is_of_the_last_quarter_and_never_of_one_that_has_just_begun() -> None:
+    """Two samples into a new quarter of an hour: SpO2, rate and leak are those of the last 15 minutes."""
+    log = (
+        SUPPORT
+        + """device spo2 01:00 04:00 90 90
+        device spo2 04:00 04:02 96 96
+        device rr_total 01:00 04:00 30 30
+        device rr_total 04:00 04:02 60 60
+        device leak 01:00 04:00 18 18
+        device leak 04:00 04:02 40 40"""
+    )
+    ctx = context(log, "04:01")
+    found = ratio_trends(ctx)
+    assert found["sf"].latest == pytest.approx(180)
+    assert found["sf"].median_of == (at("03:47"), at("04:01"))
+    assert found["rox"].latest == pytest.approx(180 / 30)
+    assert found["rox"].inputs["rr"].median_of == (at("03:47"), at("04:01"))
+    assert channel_trend(ctx, "leak").latest == 18
+    assert channel_trend(ctx, "leak").median_of == (at("03:47"), at("04:01"))
+
+
+def test_the_newest_sf_starts_at_a_change_of_fio2() -> None:
+    """SpO2 of another FiO2 says nothing of this one; of the quarter after a change there is a median at once."""
+    log = SUPPORT + "03:55 fio2 60%\ndevice spo2 01:00 03:55 90 90\ndevice spo2 03:55 04:02 96 96"
+    found = ratio_trends(context(log, "04:01"))["sf"]
+    assert found.latest == pytest.approx(160)
+    assert found.median_of == (at("03:55"), at("04:01"))
