@@ -9,6 +9,7 @@ from app.operations import figures as operations
 from app.words import sentence
 from core.figures.json_form import to_json
 from core.judgement.shapes import EpisodeFigures
+from core.record.message import refuse
 from storage.errors import store_error
 
 
@@ -20,7 +21,11 @@ def run(context: Context, args: argparse.Namespace) -> int:
         found: tuple[EpisodeFigures, ...]
         if args.episode is not None:
             one = operations.EpisodeRequest(args.episode, as_of, args.as_known_at)
-            found = (operations.of_episode(store, context.by, context.now(), one).value.figures,)
+            of_one = operations.of_episode(store, context.by, context.now(), one).value
+            if of_one.record.is_empty:
+                raise refuse("episode.nothing_stands", episode=args.episode,
+                             accepted="an episode of which something stands at that moment")  # fmt: skip
+            found = (of_one.figures,)
         else:
             ward = operations.WardRequest(as_of, args.as_known_at, everything=True)
             answer = operations.of_ward(store, context.by, context.now(), ward).value

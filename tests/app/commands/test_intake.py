@@ -91,3 +91,20 @@ def test_a_unit_stands_once_and_times_to_the_second(filled: Run, tmp_path: Path)
     bad = tmp_path / "bad.csv"
     bad.write_text(HEADER + "N4,2098-03-27T22:00:00+00:00,rr,20,,AB,\n", "utf-8")
     assert not re.search(r":\d\d\.\d", filled("intake", bad)[2])
+
+
+def test_an_episode_that_a_withdrawal_emptied_is_nowhere_and_may_begin_again(filled: Run, log_file: Path) -> None:
+    _code, out, _err = filled("--json", "taken")
+    key = json.loads(out)["taken"][0]["id"]
+    code, out, _err = filled("--by", "AB", "taken", "--withdraw", key)
+    assert code == DONE
+    assert "Nothing stands any more of N4" in out
+    assert "N4" not in filled("figures")[1]
+    code, _out, err = filled("figures", "N4")
+    assert (code, "Nothing stands of episode 'N4'" in err) == (REFUSED, True)
+    span = ("--from", "2026-03-27T20:00:00+00:00", "--to", "2026-03-28T06:00:00+00:00")
+    assert "BED 4" not in filled("handover", *span)[1]
+    code, out, _err = filled("intake", log_file)
+    assert code == DONE
+    assert "14 entries" in out
+    assert "7.33" in filled("figures", "N4")[1]
