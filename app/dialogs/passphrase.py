@@ -83,7 +83,7 @@ class NewStoreDialog(SecretDialog):
         self._again = self.secret(self.tr("Once more"))
         self.form.addRow("", self.show_typed)
         self.without = QCheckBox(self.tr("No passphrase: I know that who gets at the file can read it"))
-        self.form.addRow("", self.without)
+        self.form.addRow(self.without)
         self.without.toggled.connect(self._without_toggled)
         self.resize(theme.px(560), theme.px(380))
 

@@ -22,6 +22,7 @@ from app.chart.acid_base_map import AcidBaseMap
 from app.chart.shapes import MapGas, MapSpec
 from app.episode.on_screen import EpisodeOnScreen
 from app.look.copying import can_be_copied
+from app.look.fitted import RollArea
 from app.look.formats import day, opened, unbroken
 from app.look.theme import Theme
 from app.map.words import class_words, doubt_sentence, map_spec, map_table, response_words, steps_of, titled_spec
@@ -33,6 +34,8 @@ from core.figures.gas_path import PathGas
 _SHOWN = (0, 1, 3, 4, 7)
 """The columns of the table that find room beside the map; all of them are in the table dialog."""
 _TIME, _SITE = 1, 2
+LEAST_MAP = 300
+"""Pixels at 100 % that the map is high at least; where a window has less, it rolls."""
 SHARE = 0.45
 """Of the page's width, that its words take at most: with large text the map keeps its room."""
 
@@ -83,19 +86,26 @@ class MapView(QWidget):
         side.setSpacing(px(8))
         side.addWidget(self._card)
         side.addWidget(self.table, 1)
-        row = QHBoxLayout()
+        inner = QWidget()
+        row = QHBoxLayout(inner)
+        row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(px(12))
         row.addWidget(self.map, 1)
         row.addWidget(self._side)
+        self.roll = RollArea(inner)
         column = QVBoxLayout(self)
         column.setContentsMargins(px(16), px(4), px(16), px(4))
         column.addWidget(self.title)
-        column.addLayout(row, 1)
+        column.addWidget(self.roll, 1)
         self._set_widths()
 
     def _set_widths(self) -> None:
-        self._side.setFixedWidth(min(self._theme.px(470), max(self._theme.px(280), round(self.width() * SHARE))))
+        px = self._theme.px
+        room = self.width() - px(32) - px(16)  # less margins, and the bar that rolls
+        beside = max(min(px(470), round(room * SHARE), room - self.map.minimumSizeHint().width() - px(12)), px(180))
+        self._side.setFixedWidth(beside)
 
+        self.map.setMinimumHeight(self._theme.px(LEAST_MAP))
         self._make_room()
 
     def _make_room(self) -> None:

@@ -62,6 +62,10 @@ def known_words(waits: Waits) -> str:
     return known + "\n" + translate("statistics", "{count} not known").format(count=waits.not_known)
 
 
+MOST_LEAST = 560
+"""Pixels: half of a window of 1280, whatever the size of the text."""
+
+
 class StatisticsBars(QWidget):
     """Draws the figures of a span."""
 
@@ -90,7 +94,7 @@ class StatisticsBars(QWidget):
     def minimumSizeHint(self) -> QSize:
         px, found = self._theme.px, self._found
         rows = 0 if found is None else len(found.responses) + min(len(found.flags), _MOST_FLAGS) + 4 * 2
-        return QSize(px(420), px(3 * 60 + 24 * max(rows, 6)))
+        return QSize(min(px(420), MOST_LEAST), px(3 * 60 + 24 * max(rows, 6)))
 
     def paintEvent(self, event: QPaintEvent) -> None:
         painter = QPainter(self)

@@ -16,6 +16,7 @@ from PySide6.QtWidgets import (
     QLabel,
     QPushButton,
     QScrollArea,
+    QSizePolicy,
     QTableWidget,
     QTableWidgetItem,
     QVBoxLayout,
@@ -25,6 +26,7 @@ from PySide6.QtWidgets import (
 from app.explain.explanation import Explanation
 from app.look.choice_row import ChoiceRow
 from app.look.copying import can_be_copied
+from app.look.flow_row import FlowRow
 from app.look.formats import span as span_words
 from app.look.theme import Theme
 from app.statistics.bars import StatisticsBars
@@ -39,6 +41,8 @@ from core.record.instant import DAY, Instant, from_datetime, to_datetime
 SPANS = {"shift": 0, "day": 1, "week": 7, "month": 30}
 """The spans that one key chooses, in days before now; the shift is the window's."""
 _FORMAT = "dd-MMM-yyyy HH:mm"
+LARGE = 1.25
+"""Text scale from which table and bars share the page evenly."""
 
 
 class StatisticsView(QWidget):
@@ -66,17 +70,19 @@ class StatisticsView(QWidget):
         self.save = QPushButton(self.tr("Save as CSV..."))
         for button in (self.count, self.save):
             button.setProperty("role", "small")
+        self._to = QLabel(self.tr("to"))
+        self._to.setSizePolicy(QSizePolicy.Policy.Maximum, QSizePolicy.Policy.Expanding)
         self.table = QTableWidget(0, 3)
         can_be_copied(self.table)
         self.table.setAccessibleName(self.tr("Shift figures"))
-        self.table.setHorizontalHeaderLabels([self.tr("Figure"), self.tr("Value"), self.tr("Beside it")])
+        self.table.setHorizontalHeaderLabels([self.tr("Figure"), self.tr("Value"), self.tr("Details")])
         self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.table.verticalHeader().hide()
         self.table.setShowGrid(False)
         self.table.setWordWrap(True)
         self.table.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         self._measures: dict[int, Measure] = {}
         self.bars = StatisticsBars(theme)
         self._lay_out()
@@ -100,22 +106,21 @@ class StatisticsView(QWidget):
         head.addWidget(self.title)
         head.addWidget(self.said)
         head.addStretch(1)
-        tools = QHBoxLayout()
-        tools.setSpacing(px(8))
+        tools = FlowRow(spacing=px(8))
         tools.addWidget(self.spans)
-        tools.addStretch(1)
-        for widget in (self.start, QLabel(self.tr("to")), self.end, self.count, self.save):
-            tools.addWidget(widget)
+        for widget in (self.start, self._to, self.end, self.count, self.save):
+            tools.add_right(widget)
         self._scroll = QScrollArea()
         self._scroll.setWidgetResizable(True)
         self._scroll.setFrameShape(QFrame.Shape.NoFrame)
         self._scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self._scroll.setFocusPolicy(Qt.FocusPolicy.NoFocus)
         self._scroll.setWidget(self.bars)
-        row = QHBoxLayout()
+        row = self._row = QHBoxLayout()
         row.setSpacing(px(12))
-        row.addWidget(self.table, 12)
-        row.addWidget(self._scroll, 8)
+        row.addWidget(self.table)
+        row.addWidget(self._scroll)
+        self._share()
         column = QVBoxLayout(self)
         column.setContentsMargins(px(16), px(4), px(16), px(4))
         column.setSpacing(px(6))
@@ -123,9 +128,15 @@ class StatisticsView(QWidget):
         column.addLayout(tools)
         column.addLayout(row, 1)
 
+    def _share(self) -> None:
+        """Large text takes room from the table's sentences, which wrap, before it takes it from the bars."""
+        for place, share in enumerate((12, 8) if self._theme.text_scale < LARGE else (1, 1)):
+            self._row.setStretch(place, share)
+
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
         self._theme = theme
+        self._share()
         self.bars.set_theme(theme)
         if self.found is not None:
             self.show_figures(self.found, self._reader)
@@ -158,7 +169,7 @@ class StatisticsView(QWidget):
             return None
         rows = tuple((m.group, m.name, m.shown, m.beside) for m in measures(self.found, self._reader))
         heads = (translate("statistics", "Group"), translate("statistics", "Figure"),
-                 translate("statistics", "Value"), translate("statistics", "Beside it"))  # fmt: skip
+                 translate("statistics", "Value"), translate("statistics", "Details"))  # fmt: skip
         return Table(translate("statistics", "Shift figures"), heads, rows, as_text(self.found, self._reader))
 
     def explained(self) -> Explanation | None:

@@ -24,7 +24,7 @@ from app.window.screen_dialogs import dialogs
 from tests.app.test_accessible import PAGES, unspoken
 from tests.support.open_window import make_store, open_window, settled
 
-BASES = {"AskingDialog", "FittedDialog", "SecretDialog", "FileWork", "PreviewedForm", "EntryForm"}
+BASES = {"AskingDialog", "DraftedDialog", "FittedDialog", "SecretDialog", "FileWork", "PreviewedForm", "EntryForm"}
 """What dialogs are made from; none of them is shown by itself."""
 
 

@@ -125,3 +125,35 @@ def test_the_line_on_top_stands_beside_the_menus_where_it_fits(qtbot, tmp_path, 
         assert bar.cornerWidget() is window.top
         assert window.top.has_who
         assert window.top.moment.text().endswith("28-Mar-2026 05:30")
+
+
+@pytest.mark.parametrize("scale", [1.5, 2.0])
+def test_shift_figures_keep_their_choices_and_their_numbers(qtbot, tmp_path, scale):
+    preferences = Preferences(text_scale=scale, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(1280, 800)
+        window.show_page("statistics")
+        settled(qtbot, window)
+        qtbot.wait(20)
+        view = window.pages.statistics
+        for key in ("shift", "day", "week", "month"):
+            button = view.spans.button(key)
+            assert button.width() >= button.minimumSizeHint().width()
+        assert view.start.width() >= view.start.minimumSizeHint().width()
+        assert view.bars.width() <= view._scroll.viewport().width()  # numbers stand at the ends of the bars
+
+
+@pytest.mark.parametrize("scale", [1.0, 1.5, 2.0])
+def test_the_map_and_its_words_share_the_page(qtbot, tmp_path, scale):
+    preferences = Preferences(text_scale=scale, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(1280, 800)
+        window.select("bed-7")
+        window.show_page("map")
+        settled(qtbot, window)
+        qtbot.wait(20)
+        view = window.pages.map
+        inside = view.roll.widget()
+        assert inside.width() <= view.roll.viewport().width()
+        assert view.map.height() >= window.theme.px(280)
+        assert view._side.width() >= 0.3 * view.width()
