@@ -64,8 +64,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "episode.bad_key":
         "'{episode}' cannot name an episode: one word of at most {accepted} printable characters is accepted.",
     "episode.exists": "Episode {episode} exists already. Name {accepted}.",
-    "episode.nothing_stands": "Nothing stands of episode '{episode}': what was recorded of it was withdrawn, or was not "
-        "known yet. Accepted: {accepted}.",
+    "episode.nothing_stands":
+        "Nothing stands of episode '{episode}': what was recorded of it was withdrawn, or was not known yet. "
+        "Accepted: {accepted}.",
     "episode.unknown": "There is no episode '{episode}' in this store. "
         "{near:pick yes=Nearest;else=Known}: {accepted}.",
     "erasure.no_reason": "Removing an episode needs its reason: {accepted}.",
