@@ -28,6 +28,7 @@ class HandoverView(QWidget):
         self.title = QLabel(self.tr("Handover"))
         self.title.setProperty("role", "title")
         self.state = QLabel()
+        self.state.setWordWrap(True)  # with large text; that what stands below is old must not be cut
         self.state.setProperty("role", "quiet")
         self.copy = QPushButton(self.tr("Copy text"))
         self.save = QPushButton(self.tr("Save as PDF...  Ctrl+P"))
@@ -42,8 +43,7 @@ class HandoverView(QWidget):
         head = QHBoxLayout()
         head.setSpacing(px(12))
         head.addWidget(self.title)
-        head.addWidget(self.state)
-        head.addStretch(1)
+        head.addWidget(self.state, 1)
         head.addWidget(self.copy)
         head.addWidget(self.save)
         column = QVBoxLayout(self)
