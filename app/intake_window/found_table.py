@@ -57,8 +57,16 @@ class FoundTable(QTableWidget):
         found += [(r, self.tr("left aside")) for r in intake.aside]
         rows = [self._found_row(row, word) for row, word in found[:MOST_ROWS]]
         words = {"new": self.tr("new"), "corrects": self.tr("corrects"), "withdraws": self.tr("withdraws"),
-                 "samples": self.tr("samples"), "empty": self.tr("empty")}  # fmt: skip
+                 "samples": self.tr("samples"), "empty": self.tr("empty"),
+                 "over": self.tr("over {count} that were taken in before")}  # fmt: skip
         rows += islice(new_rows(intake, self._reader, words), MOST_ROWS - len(rows))
+        wrong = (
+            max(intake.refused_rows, len(refused)) + len(intake.doubts) + max(intake.aside_count, len(intake.aside))
+        )
+        left = wrong + len(intake.entries) + len(intake.spans) - len(rows)
+        if left > 0:
+            told = self.tr("rows that are not listed here; they are counted above")
+            rows.append(("", self.tr("more"), f"{left:,}", told))
         self._filling = True
         self._refused = len(refused) if intake.whole else 0
         self.setVisible(bool(rows))

@@ -18,17 +18,21 @@ Row = tuple[str, str, str, str]
 
 
 def new_rows(intake: Intake, reader: Reader, words: dict[str, str]) -> Iterator[Row]:
-    """Rows of (line, what, value, where and when). `words`: new, corrects, withdraws, samples, empty."""
+    """Rows of (line, what, value, where and when), samples first: each of their rows tells of many.
+
+    `words`: new, corrects, withdraws, samples, empty, over.
+    """
     told = replace(reader, near=None)  # a file is of any day
-    for draft in intake.entries:
-        e = draft.entry
-        what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(e.action, words["new"])
-        yield "", f"{what}, {channel_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
     for (episode, channel), span in intake.spans.items():
         when = f"{told.time(span.first)} - {told.time(span.last)}"
         what = f"{words['new']}, {channel_name(channel)}"
         empty = f" ({span.empty:,} {words['empty']})" if span.empty else ""
-        yield "", what, f"{span.count:,} {words['samples']}{empty}", f"{episode}, {when}"
+        over = f"; {words['over'].format(count=f'{span.over:,}')}" if span.over else ""
+        yield "", what, f"{span.count:,} {words['samples']}{empty}", f"{episode}, {when}{over}"
+    for draft in intake.entries:
+        e = draft.entry
+        what = {Action.CORRECT: words["corrects"], Action.WITHDRAW: words["withdraws"]}.get(e.action, words["new"])
+        yield "", f"{what}, {channel_name(e.channel)}", _value(e), f"{e.episode}, {told.time(e.at)}"
 
 
 def _value(e: NewEntry) -> str:

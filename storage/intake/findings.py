@@ -57,7 +57,6 @@ class Intake:
     `repeated_in_store` counts rows that the store already has; they are skipped.
     `aside` lists what is readable and not for this record, with the reason: codes that are no channel, results
     that were cancelled. `aside_count` counts them all. `unknown_codes` are those a person may give a channel.
-    `overlaid` counts device samples of earlier files that would lie under this one's and no longer count.
     `head` is the store's newest sequence when the file was read: what was recorded since was not looked at.
     """
 
@@ -74,7 +73,11 @@ class Intake:
     unknown_patients: tuple[str, ...] = ()
     unknown_codes: tuple[UnknownCode, ...] = ()
     head: int | None = None
-    overlaid: int = 0
+
+    @property
+    def overlaid(self) -> int:
+        """How many device samples of earlier files would lie under this one's and no longer count."""
+        return sum(span.over for span in self.spans.values())
 
     @property
     def sample_count(self) -> int:

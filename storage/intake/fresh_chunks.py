@@ -19,12 +19,16 @@ _HEAD = Struct("<IqqI")
 
 @dataclass(slots=True)
 class Span:
-    """What there is of one episode and channel: its first and last moment, how many samples, how many of them empty."""
+    """What there is of one episode and channel: its first and last moment, how many samples, how many of them empty.
+
+    `over` counts samples taken in before that would lie under these and no longer count.
+    """
 
     first: Instant
     last: Instant
     count: int
     empty: int = 0
+    over: int = 0
 
 
 class FreshChunks(Sequence[DraftChunk]):
@@ -48,6 +52,11 @@ class FreshChunks(Sequence[DraftChunk]):
         span.count += block.n
         span.empty += block.empty
         self.samples += block.n
+
+    def note_over(self, key: tuple[str, str], count: int) -> None:
+        """Note how many samples of the store would lie under those of an episode and channel."""
+        if count:
+            self.spans[key].over += count
 
     def __len__(self) -> int:
         return len(self._places)

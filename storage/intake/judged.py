@@ -39,7 +39,7 @@ def judged_intake(
     step()
     judged = EntryRows(rows, spool.leak_uses, existing, findings)
     entries = judged.judged()
-    chunks, known, overlaid = new_chunks(spool, source.id, existing, step)
+    chunks, known = new_chunks(spool, source.id, existing, step)
     for again in spool.repeated:
         message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
         findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
@@ -49,16 +49,16 @@ def judged_intake(
         tuple(sorted(findings.refusals, key=lambda r: r.line)), findings.refused_rows,
         judged.repeated + known + repeated,
         tuple(sorted(findings.doubts, key=lambda d: d.line)), whole,
-        tuple(aside), max(aside_count, len(aside)), overlaid=overlaid,
+        tuple(aside), max(aside_count, len(aside)),
     )  # fmt: skip
 
 
 def new_chunks(
     spool: SampleSpool, source_id: str, existing: Store | None, step: Callable[[], None]
-) -> tuple[FreshChunks, int, int]:
-    """The samples that the store does not have just so, how many it has, and how many others they would lie over."""
+) -> tuple[FreshChunks, int]:
+    """The samples that the store does not have just so, and how many it has."""
     fresh = FreshChunks(source_id)
-    known = overlaid = 0
+    known = 0
     there = _known_episodes(spool, existing)
     for key in spool.kinds():
         held = HeldSamples(existing, *key) if existing is not None and key[0] in there else None
@@ -66,10 +66,10 @@ def new_chunks(
             step()
             found = Compared(some) if held is None else held.compared(some)
             known += found.known
-            overlaid += found.overlaid
             for block in found.fresh:
                 fresh.add(key, block)
-    return fresh, known, overlaid
+            fresh.note_over(key, found.overlaid)
+    return fresh, known
 
 
 def _known_episodes(spool: SampleSpool, existing: Store | None) -> frozenset[str]:

@@ -266,3 +266,21 @@ def test_leaving_while_it_is_taken_says_whether_that_was_in_time(qtbot, window, 
     settled(qtbot, window)
     with Store.open(tmp_path / "ward.luffmark") as store:
         assert store.has_episode("bed-9") is not in_time
+
+
+def test_what_is_not_listed_is_counted_and_samples_stand_first(qtbot, window, tmp_path):
+    path = tmp_path / "night.csv"
+    rows = [f"bed-9,2026-03-28T0{m // 60}:{m % 60:02d}:{s:02d}+00:00,rr,{18 + s % 5},/min,AB,\n"
+            for m in range(60, 180) for s in range(0, 60, 12)]  # fmt: skip
+    device = [f"bed-9,2026-03-28T01:{m:02d}:00+00:00,vte,4{m:02d},mL,device,\n" for m in range(60)]
+    path.write_text(HEAD + "".join(rows + device))
+    dialog = shown(qtbot, window, path)
+    last = dialog.table.rowCount() - 1
+    assert dialog.table.item(0, 2).text() == "60 samples"
+    assert [dialog.table.item(last, c).text() for c in (1, 2)] == ["more", "101"]
+    taken(qtbot, window, dialog)
+    path.write_text(HEAD + "".join(row.replace(",4", ",5") for row in device))
+    again = shown(qtbot, window, path)
+    assert "over 60 that were taken in before" in again.table.item(0, 3).text()
+    assert "60 device samples that were taken in before lie under it" in again.summary.text()
+    again.reject()

@@ -31,10 +31,10 @@ def taken(
     lines = np.arange(minutes.size, dtype=np.int32) + 2
     t = T0 + np.round(minutes * MINUTE).astype(np.int64)
     spool.add("E1", channel(key), channel(key).unit, "", t, values, lines, 0)
-    fresh, known, overlaid = new_chunks(spool, source, store, lambda: None)
+    fresh, known = new_chunks(spool, source, store, lambda: None)
     if len(fresh):
         store.append_drafts([DraftBatch("AB", "intake", chunks=tuple(fresh))], (NOW,))
-    return fresh.samples, known, overlaid
+    return fresh.samples, known, sum(span.over for span in fresh.spans.values())
 
 
 def test_a_days_file_that_grew_brings_only_its_new_hours(store: Store) -> None:
