@@ -13,7 +13,7 @@ from PySide6.QtCore import QCoreApplication
 from app.explain.explanation import Explanation, whole
 from app.explain.figures import explain_score
 from app.figures.rows import doubts_of
-from app.look.formats import clock, fixed, fraction, gas_pressure, minutes, signed, trimmed, wall
+from app.look.formats import clock, fixed, fraction, gas_pressure, minutes, trimmed, wall
 from app.look.theme import Tier, tier_word, verdict_of
 from app.policy.words import limits_words, population_words
 from app.telling.finding_names import due_name, lever_name, marker_name
@@ -22,6 +22,7 @@ from app.telling.headline import lost_gain, verdict_with_loss
 from app.telling.lever_words import lever_sentence, lever_standing, lever_why, without_decides
 from app.telling.phrases import gas_name, gas_words
 from app.words import Reader, sentence
+from app.words.differences import changes_of
 from core.judgement.gas_reading import read
 from core.judgement.policy import Policy
 from core.judgement.policy_sections import Limit
@@ -98,11 +99,7 @@ class Explainer:
         return Explanation(title, self._response_rules(), tuple(inputs), why, noise.ph.source, noise.ph.sure)
 
     def _judged(self, gas: JudgedGas) -> str:
-        told = [minutes(gas.minutes)]
-        if gas.delta_ph is not None:
-            told.append(f"pH {signed(gas.delta_ph, 2)}")
-        if gas.delta_paco2_mmHg is not None:
-            told.append(f"PaCO2 {gas_pressure(gas.delta_paco2_mmHg, self.reader.gas_unit, sign=True)}")
+        told = [minutes(gas.minutes), *changes_of(gas, self.reader, of_pf=False)]
         if gas.verdict is not None:
             told.append(verdict_with_loss(verdict_of(gas.verdict), lost=gas.since_start.gain_lost))
         return ", ".join(told)

@@ -145,7 +145,8 @@ class _Writer:
 
     def gases(self, page: EpisodePage, unit: str) -> Iterator[str]:
         """The gases with their differences."""
-        title = translate("handover", "Gases (pressures in {unit}, HCO3 in mmol/L)").format(unit=unit)
+        told = "Gases (pressures in {unit}, HCO3 in mmol/L; +/−: against the gas before the change)"
+        title = translate("handover", told).format(unit=unit)
         yield self.heading(title, self.theme.type.emphasis)
         if not page.gases:
             yield self.text(translate("handover", "No gas recorded this shift or before it."))

@@ -93,7 +93,7 @@ def _episode(page: EpisodePage, unit: str) -> Iterator[str]:
 
 
 def _gases(gases: tuple[GasRow, ...], unit: str) -> Iterator[str]:
-    yield from ("", f"Gases (pressures in {unit}, HCO3 in mmol/L)")
+    yield from ("", f"Gases (pressures in {unit}, HCO3 in mmol/L; in brackets: against the gas before the change)")
     for g in gases:
         ph = f"{g.ph} ({g.delta_ph})" if g.delta_ph else g.ph
         paco2 = f"{g.paco2} ({g.delta_paco2})" if g.delta_paco2 else g.paco2

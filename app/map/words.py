@@ -7,13 +7,14 @@ from dataclasses import replace
 from math import ceil, floor
 
 from app.chart.shapes import MapBand, MapGas, MapLine, MapSpec, Scale
-from app.look.formats import fixed, gas_pressure, opened, signed, trimmed, wall
+from app.look.formats import fixed, gas_pressure, opened, trimmed, wall
 from app.telling.gas_doubt import doubt_word, rests_on_doubt, state_in_doubt
 from app.telling.headline import gas_state_word, in_doubt, judged_sign, since_start_words, verdict_with_loss
 from app.telling.phrases import gas_name, gas_words, state_of, translate, verdict_or_none
 from app.telling.table import Table
 from app.ward.lane_words import anchor_name
 from app.words import Reader, sentence
+from app.words.differences import changes_of
 from app.words.short_forms import ph_as_reported
 from core.figures.gas_path import PathGas, gas_path
 from core.figures.map_lines import map_lines
@@ -109,11 +110,7 @@ def response_words(p: PathGas, reader: Reader) -> str:
     lost = p.judged.since_start.gain_lost
     word = verdict_with_loss(verdict, lost=lost) if verdict is not None else translate("map", "not judged")
     word = in_doubt(word) if rests_on_doubt(p.gas) else word
-    deltas = []
-    if p.judged.delta_ph is not None:
-        deltas.append(f"pH {signed(p.judged.delta_ph, 2)}")
-    if p.judged.delta_paco2_mmHg is not None:
-        deltas.append(f"PaCO2 {gas_pressure(p.judged.delta_paco2_mmHg, reader.gas_unit, sign=True)}")
+    deltas = changes_of(p.judged, reader, of_pf=False)
     told = translate("map", "{verdict} after {anchor}").format(verdict=word, anchor=anchor_name(p.response))
     return (f"{told} ({', '.join(deltas)})" if deltas else told) + since_start_words(p.judged)
 

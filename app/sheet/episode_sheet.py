@@ -46,7 +46,7 @@ def _changes(page: EpisodePage) -> Iterator[Block]:
 def lower_blocks(page: EpisodePage, unit: str) -> Iterator[Block]:
     """What stands under the chart: gases, flags, due items and levers, plan and care, what is to be checked."""
     b = page.brief
-    told = tr("Gases (pressures in {unit}; HCO3 in mmol/L, c: calculated; +/−: against the last change)")
+    told = tr("Gases (pressures in {unit}; HCO3 in mmol/L, c: calculated; +/−: against the gas before the change)")
     heading = told.format(unit=unit)
     yield Heading(heading, _left_out(b.gases_out, tr("earlier gas")))
     gases = page.gases[b.gases_out :]

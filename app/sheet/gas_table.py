@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 from app.look import formats
 from app.telling.language import in_language as tr
+from app.words.differences import paco2_change, ph_change
 from app.words.figure_lines import FigureLines
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
@@ -80,21 +81,13 @@ def _row(g: GasFigure, j: JudgedGas | None, lines: FigureLines, *, is_before: bo
     return GasRow(
         lines.reader.time(g.at),
         g.site[:3] + ("?" if g.site_assumed else ""),
-        NO_VALUE if g.ph is None else lines.ph(g), _signed(j.delta_ph if j else None, 2),
+        NO_VALUE if g.ph is None else lines.ph(g), ph_change(j) if j else "",
         lines.paco2(g).removesuffix(f" {unit}") if g.paco2_mmHg is not None else NO_VALUE,
-        _pressure_change(j.delta_paco2_mmHg if j else None, unit),
+        paco2_change(j, unit).removesuffix(f" {unit}") if j else "",
         pressure(g.pao2_mmHg), NO_VALUE if hco3 is None else formats.fixed(hco3, 1) + mark,
         pressure(g.pf_mmHg), NO_VALUE if g.fio2 is None else formats.fraction(g.fio2),
         ", ".join([state or tr("not known"), *marks]), _verdict(j, is_base=is_base), is_before,
     )  # fmt: skip
-
-
-def _signed(value: float | None, decimals: int) -> str:
-    return "" if value is None else formats.signed(value, decimals)
-
-
-def _pressure_change(value: float | None, unit: str) -> str:
-    return "" if value is None else formats.gas_pressure(value, unit, sign=True).removesuffix(f" {unit}")
 
 
 def _verdict(j: JudgedGas | None, *, is_base: bool) -> str:

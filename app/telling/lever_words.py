@@ -13,7 +13,7 @@ from core.record.message import Message
 
 DECIDES: Final = "lever.qualified_person_decides"
 """Stands with every lever; a page says it once."""
-_NAMED: Final = 2
+_NAMED: Final = 3
 """So many open flags a lever names; the others stand among the flags."""
 _ENOUGH: Final = "lever.oxygen_enough"
 _NO_NEED: Final = frozenset({

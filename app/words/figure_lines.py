@@ -10,6 +10,7 @@ from app.telling.presumed import presumed_word
 from app.telling.taken import taken_words
 from app.words import Reader, sentence
 from app.words.arm_words import arm_words, arms_agree
+from app.words.differences import changes_of
 from app.words.missing_inputs import missing_names, why_missing
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
@@ -250,13 +251,7 @@ class FigureLines:
 
     def deltas(self, g: JudgedGas, *, with_state: bool = True) -> str:
         """By how much a gas differs from the baseline, and when it was taken."""
-        parts = []
-        if g.delta_ph is not None:
-            parts.append(f"pH {formats.signed(g.delta_ph, 2)}")
-        if g.delta_paco2_mmHg is not None:
-            parts.append(f"PaCO2 {self.pressure(g.delta_paco2_mmHg, sign=True)}")
-        if g.delta_pf_mmHg is not None:
-            parts.append(f"P/F {self.pressure(g.delta_pf_mmHg, sign=True)}")
+        parts = changes_of(g, self.reader)
         timing = {"early": self.tr("early"), "late": self.tr("late")}.get(g.timing, "")
         when = f"{self.tr('after')} {formats.minutes(g.minutes)}{', ' + timing if timing else ''}"
         state = f", {self.tr('gas')} {self.state(g.state, g.at)}" if g.state and with_state else ""

@@ -23,6 +23,7 @@ from math import isnan
 
 from app.look import formats
 from app.telling.language import in_language
+from app.words.shown_difference import difference_text, pressure_difference
 from core.record.channels import CHANNELS
 from core.record.instant import Instant
 from core.record.message import Value
@@ -176,9 +177,32 @@ def quantity_text(quantity: str, value: float, reader: Reader, *, sign: bool = F
 
 def _quantity(*, sign: bool = False, noise: bool = False) -> Writer:
     def written(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
+        if sign and _lies_between(value, values):
+            return _difference(values, reader)
         return quantity_text(str(values.get("quantity", "")), _number(value), reader, sign=sign, noise=noise)
 
     return written
+
+
+def _lies_between(value: Value, values: Mapping[str, Value]) -> bool:
+    """Whether a difference is that of the two values told beside it."""
+    before, after = values.get("before"), values.get("after")
+    known = isinstance(before, (int, float)) and isinstance(after, (int, float))
+    return known and abs(_number(after) - _number(before) - _number(value)) < 1e-6
+
+
+def _difference(values: Mapping[str, Value], reader: Reader) -> str:
+    """The difference of two values as they are shown."""
+    quantity, before, after = str(values.get("quantity", "")), _number(values["before"]), _number(values["after"])
+    if quantity in ("paco2", "pao2", "pf", "aa"):
+        return pressure_difference(before, after, reader.gas_unit)
+    if quantity == "ph":
+        return difference_text(before, after, 2)
+    if quantity == "fio2":
+        return f"{difference_text(before * 100, after * 100, 0)} %"
+    unit = formats.shown_unit(quantity) if quantity in CHANNELS else ""
+    decimals = {"sf": 0, "rox": 2}.get(quantity, CHANNELS[quantity].decimals if quantity in CHANNELS else 1)
+    return formats.with_unit(difference_text(before, after, decimals), unit)
 
 
 def _as_typed(value: Value, values: Mapping[str, Value], reader: Reader) -> str:

@@ -165,7 +165,7 @@ class _Judge:
         anchor = self.anchors[index]
         minutes, when = timing(self.ctx, anchor, gas)
         since = self.since.get(gas.at, _NOT_COMPARED)
-        plain = JudgedGas(gas.at, minutes, when, state=gas.state, since_start=since)
+        plain = _listed(gas, JudgedGas(gas.at, minutes, when, state=gas.state, since_start=since))
         if gas.site == VENOUS:
             return self._venous(anchor, gas, plain)
         reason = _unjudged(base, gas)
@@ -189,7 +189,7 @@ class _Judge:
             verdict, arms.sure(co2.verdict, base.gas, gas), arms.sure(oxygen.verdict, base.gas, gas), gas.state, True,
             since, also, (*unsure, *co2.why, *oxygen.why, *_cautions(base, gas, when, since, also),
                           *why.doubts(base.gas, gas)),
-            co2_at_issue=active or arms.acute_hypercapnia(gas, self.ctx.policy),
+            active or arms.acute_hypercapnia(gas, self.ctx.policy), gas.ph, gas.paco2_mmHg, gas.pf_mmHg,
         )  # fmt: skip
 
     def _not_attributable(self, index: int, base: Baseline, gas: GasFigure) -> JudgedGas:
@@ -197,10 +197,10 @@ class _Judge:
         minutes, when = timing(self.ctx, self.anchors[index], gas)
         also = self._also_changed(index, self.anchors[index].at, gas.at)
         reason = Message("response.not_attributable", {"gas_at": gas.at, "steps": len(also)})
-        listed = JudgedGas(
+        listed = _listed(gas, JudgedGas(
             gas.at, minutes, when, state=gas.state, attributable=False, also_changed=also, why=(reason,),
             since_start=self.since.get(gas.at, _NOT_COMPARED),
-        )  # fmt: skip
+        ))  # fmt: skip
         if base.gas is None or gas.site == VENOUS or gas.off_support:
             return listed
         return _with_deltas(listed, self.ctx.policy, base.gas, gas)
@@ -343,6 +343,11 @@ def _cautions(base: Baseline, gas: GasFigure, when: str, since: SinceStart, also
     if also:
         said.append(Message("response.also_changed", {"steps": len(also), "last_at": also[-1].at}))
     return said
+
+
+def _listed(gas: GasFigure, judged: JudgedGas) -> JudgedGas:
+    """With the gas's own values."""
+    return replace(judged, ph=gas.ph, paco2_mmHg=gas.paco2_mmHg, pf_mmHg=gas.pf_mmHg)
 
 
 def _with_deltas(judged: JudgedGas, policy: Policy, base: GasFigure, gas: GasFigure) -> JudgedGas:

@@ -66,6 +66,10 @@ class JudgedGas:
     co2_at_issue: bool = True
     """Whether CO2 was or is at issue: acute hypercapnia at the baseline or in this gas. Elsewhere a PaCO2 that moves
     is told as moving, never as CO2 better or worse."""
+    ph: float | None = None
+    """The gas's own values, at which the differences end."""
+    paco2_mmHg: float | None = None
+    pf_mmHg: float | None = None
 
 
 @dataclass(frozen=True, slots=True)

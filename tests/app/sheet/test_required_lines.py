@@ -125,7 +125,7 @@ def test_the_wards_page_says(printed: list[str], clause: str) -> None:
 
 
 def test_a_response_stands_in_words_or_where_there_is_no_room_by_its_verdict(printed: list[str]) -> None:
-    whole = flat("20:00 IPAP 14 to 20 cmH2O Better: pH +0.08, PaCO2 −16 mmHg, P/F +11 mmHg after 1 h 10 min")
+    whole = flat("20:00 IPAP 14 to 20 cmH2O Better: pH +0.08, PaCO2 −16 mmHg, P/F +10.7 mmHg after 1 h 10 min")
     assert whole in printed[1] or flat("20:00 IPAP 14 to 20 cmH2O: better") in printed[1]
 
 
