@@ -23,7 +23,9 @@ ROOT = Path(__file__).parents[3]
 MAKERS = {"Message": 0, "refuse": 0, "store_error": 0, "unreadable": 2}
 """What makes a message, and which of its arguments is the key."""
 KEY = re.compile(r"[a-z][a-z0-9_]*\.[a-z][a-z0-9_]*")
-NOT_KEYS = re.compile(r".*\.(py|toml|csv|md|svg|luff|luffmark|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*")
+NOT_KEYS = re.compile(
+    r".*\.(py|toml|csv|md|svg|luff(mark)?|txt|json|pdf|png|key|new|seq)$|core\..*|storage\..*|app\..*"
+)
 NAMES_OF_NUMBERS = {"policy_limits.py"}
 """Modules that name numbers of the policy by their path, written like keys; their messages are calls."""
 OPERATIONS = {
