@@ -88,7 +88,7 @@ DUE: Final[dict[str, str]] = {
     "due.repeat_gas_soon": "After the gas of {gas_at:time}: pH {ph:2}, {why:pick severe=severe acidosis;"
         "doubtful=in doubt;worse=worse;"
         "worse since start=worse since the start;gain lost=gain lost;not better=not better}.",
-    "due.first_skin_check": "No skin check logged since {of} began at {since_at:time}.",
+    "due.first_skin_check": "The first skin check since {of} began at {since_at:time}.",
     "due.skin_check": "Skin under the mask last seen at {last_at:time}.",
     "due.spo2_recheck": "One SpO2 reading of {spo2:0} % at {at:time}, outside {low:0} to {high:0} %.",
 }  # fmt: skip
@@ -158,7 +158,7 @@ LEVERS: Final[dict[str, str]] = {
     "lever.little_mask_time":
         "Only {hours:hours} of the last {of_hours:hours} on the mask (at least {least:fraction} is aimed at).",
     "lever.mask_time_enough":
-        "On the mask for {hours:hours} of the last {of_hours:hours}: at least {least:fraction}, enough.",
+        "On the mask for {hours:hours} of the last {of_hours:hours}, which is enough (at least {least:fraction}).",
     "lever.mask_time_not_known": "Time on the mask is not known: the start is not recorded.",
     "lever.mode_has_no_rate": "[[{mode}: ]]the mode has no such setting.",
     "lever.no_acidosis": "No acidosis with a high PaCO2 in the newest gas on support, {at:time}[[: pH {ph:2}]]"
