@@ -19,6 +19,14 @@ _SECOND = (
     "respiratory_alkalosis= mixed with a respiratory alkalosis}"
 )
 
+
+def _one_of(kind: str, of: str) -> str:
+    """Acute or chronic; neither where the gas fits both."""
+    whole = f"respiratory {of}"
+    return (f"{{apart:pick no={whole.capitalize()}, acute or chronic not to be told apart;"
+            f"else={kind.capitalize()} {whole}}}")  # fmt: skip
+
+
 GAS: Final[dict[str, str]] = {
     "gas.bicarbonate_is_standard": "the ward's bicarbonate is standard, which is not checked against pH and PCO2",
     "gas.consistency_needs_three": "pH, PCO2 and bicarbonate are needed to check them against each other",
@@ -71,18 +79,18 @@ GAS: Final[dict[str, str]] = {
     "gas_class.none": "No disturbance.",
     "gas_class.not_known": "Not classified: pH or PCO2 is missing.",
     "gas_class.borderline": "At the border of normal.",
-    "gas_class.acute_respiratory_acidosis": f"Acute respiratory acidosis{_SECOND}.",
+    "gas_class.acute_respiratory_acidosis": f"{_one_of('acute', 'acidosis')}{_SECOND}.",
     "gas_class.chronic_respiratory_acidosis":
-        f"Chronic respiratory acidosis{_SECOND}{{acidotic:pick yes=, pH still low;no=}}.",
+        f"{_one_of('chronic', 'acidosis')}{_SECOND}{{acidotic:pick yes=, pH still low;no=}}.",
     "gas_class.acute_on_chronic_respiratory_acidosis": f"Acute-on-chronic respiratory acidosis{_SECOND}.",
-    "gas_class.acute_respiratory_alkalosis": f"Acute respiratory alkalosis{_SECOND}.",
-    "gas_class.chronic_respiratory_alkalosis": f"Chronic respiratory alkalosis{_SECOND}.",
+    "gas_class.acute_respiratory_alkalosis": f"{_one_of('acute', 'alkalosis')}{_SECOND}.",
+    "gas_class.chronic_respiratory_alkalosis": f"{_one_of('chronic', 'alkalosis')}{_SECOND}.",
     "gas_class.metabolic_acidosis": f"Metabolic acidosis{_SECOND}.",
     "gas_class.metabolic_alkalosis": f"Metabolic alkalosis{_SECOND}.",
     "reason.acidotic_all_the_same": "pH {ph:2} is still below {low:2}.",
     "reason.bicarbonate": "Bicarbonate {hco3:1} mmol/L (normal {low:0} to {high:0}).",
     "reason.lines_too_close":
-        "The lines of acute ({acute:1} mmol/L) and chronic ({chronic:1} mmol/L) lie too close to tell apart.",
+        "It fits both lines, acute ({acute:1} mmol/L) and chronic ({chronic:1} mmol/L): too close to tell apart.",
     "reason.metabolic_line":
         "At bicarbonate {hco3:1} mmol/L a PaCO2 of {expected_paco2:gas} (within {tolerance:gas}) is expected.",
     "reason.paco2": "PaCO2 {paco2:gas} (normal {low:gas} to {high:gas}).",

@@ -9,8 +9,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import IntEnum
-from math import isnan
-from typing import Any
+from typing import Any, Final
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -75,11 +74,14 @@ class Classification:
     second: Second
     acidotic: bool
     steps: tuple[Message, ...]
+    apart: bool = True
+    """False where the bicarbonate fits the acute and the chronic line alike: then the words call it neither."""
 
     @property
     def message(self) -> Message:
         """The class as a message: `gas_class.` with the main disturbance's name."""
-        values: dict[str, Value] = {"second": self.second.name.lower(), "acidotic": self.acidotic}
+        second = self.second.name.lower()
+        values: dict[str, Value] = {"second": second, "acidotic": self.acidotic, "apart": self.apart}
         return Message(f"gas_class.{self.main.name.lower()}", values)
 
 
@@ -171,10 +173,23 @@ def classify(ph: float, paco2: float) -> Classification:
     main, second = Disturbance(int(codes.main)), Second(int(codes.second))
     chronic = main is Disturbance.CHRONIC_RESPIRATORY_ACIDOSIS
     acidotic = chronic and ph < NORMAL_PH_LOW
-    return Classification(main, second, acidotic, _steps(ph, paco2, main, acidotic))
+    apart = main not in _RESPIRATORY or not _fits_both(acid_base.bicarbonate(ph, paco2), paco2)
+    return Classification(main, second, acidotic, _steps(ph, paco2, main, acidotic, apart), apart)
 
 
-def _steps(ph: float, paco2: float, main: Disturbance, acidotic: bool) -> tuple[Message, ...]:
+_RESPIRATORY: Final = frozenset({
+    Disturbance.ACUTE_RESPIRATORY_ACIDOSIS, Disturbance.CHRONIC_RESPIRATORY_ACIDOSIS,
+    Disturbance.ACUTE_RESPIRATORY_ALKALOSIS, Disturbance.CHRONIC_RESPIRATORY_ALKALOSIS,
+})  # fmt: skip
+
+
+def _fits_both(hco3: float, paco2: float) -> bool:
+    """Whether a bicarbonate lies within the tolerance of what is expected both when acute and when chronic."""
+    expected = (compensation.expected_hco3_acute(paco2), compensation.expected_hco3_chronic(paco2))
+    return all(abs(hco3 - line) <= HCO3_TOLERANCE for line in expected)
+
+
+def _steps(ph: float, paco2: float, main: Disturbance, acidotic: bool, apart: bool) -> tuple[Message, ...]:
     hco3 = acid_base.bicarbonate(ph, paco2)
     steps = [
         Message("reason.ph", {"ph": ph, "low": NORMAL_PH_LOW, "high": NORMAL_PH_HIGH}),
@@ -193,7 +208,7 @@ def _steps(ph: float, paco2: float, main: Disturbance, acidotic: bool) -> tuple[
     acute, chronic = compensation.expected_hco3_acute(paco2), compensation.expected_hco3_chronic(paco2)
     lines = {"hco3": hco3, "acute": acute, "chronic": chronic, "tolerance": HCO3_TOLERANCE}
     steps.append(Message("reason.respiratory_lines", {**lines}))
-    if abs(chronic - acute) < 2.0 * HCO3_TOLERANCE and not isnan(chronic):
+    if not apart:
         steps.append(Message("reason.lines_too_close", {"acute": acute, "chronic": chronic}))
     if acidotic:
         steps.append(Message("reason.acidotic_all_the_same", {"ph": ph, "low": NORMAL_PH_LOW}))

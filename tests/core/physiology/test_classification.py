@@ -7,6 +7,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from app.words import sentence
 from core.physiology.classification import Disturbance, Second, classify, classify_codes
 
 
@@ -70,3 +71,22 @@ def test_near_40_the_lines_cannot_be_told_apart_and_it_says_so() -> None:
 def test_both_units_get_the_same_class() -> None:
     """45 mmHg and 6.0 kPa are one limit."""
     assert classify(7.34, 45.0).main == classify(7.34, 6.0 * 7.50062).main
+
+
+@given(ph=st.floats(6.9, 7.7), paco2=st.floats(15.0, 120.0))
+def test_what_cannot_be_told_apart_is_called_neither_acute_nor_chronic(ph: float, paco2: float) -> None:
+    found = classify(ph, paco2)
+    too_close = "reason.lines_too_close" in [step.key for step in found.steps]
+    words = sentence(found.message)
+    assert found.message.values["apart"] is not too_close
+    named = found.main.name.startswith(("ACUTE_RESPIRATORY", "CHRONIC_RESPIRATORY"))
+    assert words.startswith(("Acute respiratory", "Chronic respiratory")) is (named and not too_close)
+    assert ("acute or chronic not to be told apart" in words) is too_close
+
+
+def test_a_gas_that_fits_one_line_alone_is_called_by_it_though_the_lines_are_near() -> None:
+    alkalosis = classify(7.49, 32.0)  # bicarbonate 24.1: 22.4 when acute, 20.8 when chronic
+    assert sentence(alkalosis.message) == "Acute respiratory alkalosis."
+    assert "reason.lines_too_close" not in [step.key for step in alkalosis.steps]
+    both = classify(7.33, 50.0)
+    assert sentence(both.message) == "Respiratory acidosis, acute or chronic not to be told apart."
