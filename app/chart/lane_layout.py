@@ -55,12 +55,12 @@ class LaneGeometry:
     @property
     def flag(self) -> float:
         """Height of a pennant; its top is at `flag_top`."""
-        return (11 if self.close else 16) * self.unit
+        return (10 if self.close else 16) * self.unit
 
     @property
     def flag_top(self) -> float:
         """Where pennants begin, under the lane's top."""
-        return (1 if self.close else 4) * self.unit
+        return (2 if self.close else 4) * self.unit
 
     @property
     def words(self) -> float:
