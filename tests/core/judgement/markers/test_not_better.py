@@ -7,6 +7,7 @@ Ozyilmaz, BMC Pulm Med 2014;14:19. What counts as settling is common practice, n
 
 import pytest
 
+from app.words import sentence
 from tests.support.flag_cases import BEFORE, COPD, LUNG, START, flags, met, told
 from tests.support.log_cases import at
 
@@ -253,3 +254,11 @@ def test_a_loss_in_an_early_gas_is_told_with_its_caution(minutes: str, is_early:
         told = next(f for f in found if f.marker == marker)
         doubts = [m.values["doubt"] for m in told.evidence if m.key == "evidence.gas_doubt"]
         assert ("early" in doubts) is is_early, marker
+
+
+def test_a_flag_that_stands_for_hours_says_when_it_was_judged():
+    """ "Not better at 1-2 h" is a name: beside it stands by which gas, how long after the start."""
+    log = COPD + "00:30 ph 7.26 paco2 75\n" + START + "02:10 ph 7.27 paco2 74\n"
+    flag = next(f for f in flags(log, "06:30") if f.marker == "ph_not_better")
+    words = " ".join(sentence(m) for m in flag.evidence)
+    assert "Judged 1 h 10 min after the start of 27-Mar-2026 01:00." in words
