@@ -50,6 +50,17 @@ class ClosingDeeds(WritingDeeds):
             told, (session.person, self.window.preferences.paper), self.close_handover, self.window.theme, self.window
         )
         self._dialog.open()
+        from app.operations import handover
+
+        self.model.ask(handover.closed_of_shift, (shift.start, shift.end), done=self._tell_closed)
+
+    def _tell_closed(self, outcome: Outcome[tuple[DocumentFacts, ...]]) -> None:
+        """A second handover of one shift is closed knowingly."""
+        from app.look.formats import wall
+
+        if self._dialog is not None and outcome.value:
+            newest = wall(outcome.value[0].recorded_at, self.model.session.zone)
+            self._dialog.tell_closed([d.name for d in outcome.value], newest)
 
     def close_handover(self, given_by: str, taken_by: str, paper: str) -> None:
         """Gather the shift, print it, keep the print."""

@@ -133,7 +133,8 @@ class LogDeeds(FormDeeds):
         dialog = CorrectDialog(
             self.model, feed.answers[key].record, labels, self.window.reader, self.window.theme, self.window
         )
-        dialog.recorded.connect(self.strip.remember)
+        self.strip.know_labels(labels)
+        dialog.recorded.connect(self.strip.take)
         self.show_form(dialog, key)
 
     def do_device_span(self) -> None:

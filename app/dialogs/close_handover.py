@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 
+from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
 
 from app.dialogs.asking import AskingDialog
@@ -32,8 +33,25 @@ class CloseHandoverDialog(AskingDialog):
         self.field(self.tr("Given by"), self.given)
         self.field(self.tr("Taken by"), self.taken)
         self.field(self.tr("Paper"), self.paper)
+        self.already = QLabel()
+        self.already.setTextFormat(Qt.TextFormat.PlainText)
+        self.already.setWordWrap(True)
+        self.already.setProperty("role", "strong")
+        self.already.hide()
+        self.body.addWidget(self.already)
         self.taken.setFocus()
         self.resize(theme.px(520), theme.px(320))
+
+    def tell_closed(self, names: Sequence[str], newest: str) -> None:
+        """Say which handovers of this shift are closed already, the newest first, and when that was."""
+        if names:
+            told = self.tr("A handover of this shift is closed already: {name}, at {time}.")
+            if len(names) > 1:
+                told = self.tr("{count} handovers of this shift are closed already, the last: {name}, at {time}.")
+            told += " " + self.tr("Closing again keeps a further one beside it; Ctrl+Shift+O opens closed ones.")
+            self.already.setText(told.format(count=len(names), name=names[0], time=newest))
+            self.already.show()
+            self.grow()
 
     def submit(self) -> None:
         """Hand on what was asked, when both names are there."""

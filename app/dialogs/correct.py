@@ -2,25 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from enum import StrEnum
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import (
-    QAbstractItemView,
-    QHeaderView,
-    QLabel,
-    QLineEdit,
-    QTreeWidget,
-    QTreeWidgetItem,
-    QWidget,
-)
+from PySide6.QtWidgets import QLabel, QLineEdit, QWidget
 
 from app.dialogs.drafted import DraftedDialog
+from app.dialogs.logged_list import LoggedList, named_value
 from app.forms.typed_time import typed_near
 from app.look.chooser import Chooser
-from app.look.copying import can_be_copied
-from app.look.formats import inert, logged, wall
+from app.look.formats import wall
 from app.look.theme import Theme
 from app.operations import correction, intake
 from app.operations.outcome import Outcome
@@ -31,15 +23,14 @@ from app.strip.settle_time import SettleTime
 from app.telling.phrases import channel_name
 from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
-from core.record.entries import Entry
+from core.record.entries import Action, Entry
 from core.record.episode import Episode
+from core.record.gas_together import gas_with
 from core.record.instant import Instant
 from core.record.local_time import local
 from core.record.message import Message, RecordError
 from core.record.units import written
 
-_ENTRY = Qt.ItemDataRole.UserRole
-_BY = 3
 _OF = "entry"
 """The name in a draft of the value that it is about."""
 
@@ -52,10 +43,18 @@ class Act(StrEnum):
     MOVE = "move"
 
 
+class Of(StrEnum):
+    """How much of a gas."""
+
+    WHOLE = "whole"
+    ONE = "one"
+
+
 class CorrectDialog(DraftedDialog):
     """Newest entries first. `recorded` after it was done, so that it can be undone."""
 
-    recorded = Signal(object)
+    recorded = Signal(object, str)
+    """What was recorded, and a sentence that says so."""
 
     def __init__(
         self,
@@ -70,40 +69,26 @@ class CorrectDialog(DraftedDialog):
         super().__init__("", "", theme, parent)
         self.setWindowTitle(self.tr("Correct or withdraw, {label}").format(label=title))
         self.go.setText(self.tr("Record it"))
-        self._model, self._record, self._reader = model, record, reader
+        self._model, self._record, self._reader, self._labels = model, record, reader, labels
         self._confirmed = False
-        self._sent: correction.CorrectionRequest | None = None
+        self._sent: correction.Request | None = None
         self.settle = SettleTime()
         self.whom = QLabel(title)
         self.whom.setTextFormat(Qt.TextFormat.PlainText)
         self.whom.setWordWrap(True)
         self.whom.setProperty("role", "title")
         self.body.addWidget(self.whom)
-        self.list = QTreeWidget()
-        can_be_copied(self.list)
-        self.act, self.to = Chooser(), Chooser()
+        self.list = LoggedList(record, reader)
+        self.act, self.to, self.of = Chooser(), Chooser(), Chooser()
         self.value, self.time, self.reason = QLineEdit(), QLineEdit(), QLineEdit()
-        self._add_list()
+        self.list.setMinimumHeight(theme.px(112))
+        self.add_body(self.list)
         self._add_fields({key: label for key, label in labels.items() if key != record.key})
-        self._fill()
+        self.list.currentItemChanged.connect(self._chosen)
+        self._chosen()
         self._act_chosen()
         model.ask(intake.origins, record.key, done=self._show_origins)
         self.resize(theme.px(860), theme.px(640))
-
-    def _add_list(self) -> None:
-        self.list.setAccessibleName(self.tr("Logged values, newest first"))
-        self.list.setHeaderLabels(
-            [self.tr("When"), self.tr("What"), self.tr("Value"), self.tr("By"), self.tr("Marks")]
-        )
-        self.list.setRootIsDecorated(False)
-        self.list.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
-        self.list.header().setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
-        self.list.header().setStretchLastSection(False)
-        self.list.header().setSectionResizeMode(2, QHeaderView.ResizeMode.Stretch)
-        self.list.setTextElideMode(Qt.TextElideMode.ElideRight)
-        self.list.currentItemChanged.connect(self._chosen)
-        self.list.setMinimumHeight(self.theme.px(112))
-        self.add_body(self.list)
 
     def _add_fields(self, others: Mapping[str, str]) -> None:
         self.act.addItem(self.tr("correct the value or the time"), Act.CORRECT)
@@ -111,7 +96,10 @@ class CorrectDialog(DraftedDialog):
         self.act.addItem(self.tr("move to another patient"), Act.MOVE)
         for key, label in others.items():
             self.to.addItem(label, key)
+        self.of.addItem("", Of.WHOLE)
+        self.of.addItem(self.tr("only this value"), Of.ONE)
         self.field(self.tr("What to do"), self.act)
+        self.field(self.tr("How much of the gas"), self.of)
         self.field(self.tr("Right value, with unit"), self.value)
         self.field(self.tr("Right time"), self.time)
         self.to.setPlaceholderText(self.tr("Choose the right patient"))
@@ -121,43 +109,13 @@ class CorrectDialog(DraftedDialog):
         self.time.setPlaceholderText(self.tr("14:20, second 01:30, 20m ago"))
         self.time.setToolTip(self.tr("The nearest such time to the one it was logged for"))
         self.act.currentIndexChanged.connect(self._act_chosen)
+        for chosen in (self.of, self.to):
+            chosen.currentIndexChanged.connect(self._changed)
         for edited in (self.value, self.time):
             edited.textChanged.connect(self._changed)
 
-    def _fill(self) -> None:
-        for s in sorted(self._record.standing, key=lambda s: (-s.entry.at, -s.entry.seq)):
-            e = s.entry
-            if CHANNELS[e.channel].kind is Kind.MARK:
-                shown = e.words or ""
-            else:
-                value = e.number if e.number is not None else e.words
-                shown = logged(e.channel, value, e.raw, e.raw_unit, self._reader.gas_unit)
-            marks = [
-                word
-                for word, held in (
-                    (self.tr("corrected"), s.corrected),
-                    (self.tr("disputed"), s.disputed),
-                    (self.tr("doubtful"), bool(e.doubt)),
-                )
-                if held
-            ]
-            item = QTreeWidgetItem(
-                [wall(e.at, self._reader.zone), channel_name(e.channel), shown, e.by, ", ".join(marks)]
-            )
-            item.setData(0, _ENTRY, e.id)
-            self.list.addTopLevelItem(item)
-        first = self.list.topLevelItem(0)
-        if first is not None:
-            self.list.setCurrentItem(first)
-
     def _show_origins(self, outcome: Outcome[dict[str, str]]) -> None:
-        """Beside who wrote a value the file it came from."""
-        for row in range(self.list.topLevelItemCount()):
-            item = self.list.topLevelItem(row)
-            name = outcome.value.get(str(item.data(0, _ENTRY))) if item is not None else None
-            if item is not None and name:
-                item.setText(_BY, self.tr("{by}, {file}").format(by=item.text(_BY), file=name))
-                item.setToolTip(_BY, inert(item.text(_BY)))
+        self.list.show_origins(outcome.value)
 
     def _chosen(self) -> None:
         found = self._entry()
@@ -166,7 +124,23 @@ class CorrectDialog(DraftedDialog):
             self.value.setText(found.words or "" if is_mark else _editable(found))
             moment = local(found.at, self._reader.zone)
             self.time.setText(f"{moment:%H:%M}")
-            self.begin_draft("value", "time")
+            self.of.setCurrentIndex(0)
+            self._name_gas(found)
+            self._changed()
+            self.begin_draft("value", "time", "of")
+
+    def _name_gas(self, found: Entry) -> None:
+        """The values of a gas go together unless somebody says otherwise."""
+        together = gas_with(found.id, self._record.standing)
+        names = ", ".join(channel_name(e.channel) for e in together)
+        is_time = self.act.currentData() == Act.CORRECT
+        text = (
+            self.tr("another time is that of the whole gas: {names}")
+            if is_time
+            else self.tr("the whole gas: {names}")
+        )
+        self.of.setItemText(0, text.format(names=names))
+        self.form.setRowVisible(self.of, len(together) > 1)
 
     def typed(self) -> dict[str, str]:
         """What is half typed, and for which value."""
@@ -175,19 +149,14 @@ class CorrectDialog(DraftedDialog):
 
     def put(self, typed: Mapping[str, str]) -> None:
         """Choose the value that it was typed for; where that stands no more nothing but the reason comes back."""
-        rows = [self.list.topLevelItem(n) for n in range(self.list.topLevelItemCount())]
-        own = next((item for item in rows if item is not None and item.data(0, _ENTRY) == typed.get(_OF)), None)
-        if own is None:
+        if not self.list.choose(typed.get(_OF, "")):
             super().put({name: text for name, text in typed.items() if name == "reason"})
             self.refuse(self.tr("The value that this was typed for stands no more: choose again."))
             return
-        self.list.setCurrentItem(own)
         super().put(typed)
 
     def _entry(self) -> Entry | None:
-        item = self.list.currentItem()
-        wanted = item.data(0, _ENTRY) if item is not None else None
-        return next((s.entry for s in self._record.standing if s.entry.id == wanted), None)
+        return next((s.entry for s in self._record.standing if s.entry.id == self.list.entry_id), None)
 
     def _act_chosen(self) -> None:
         act = self.act.currentData()
@@ -196,6 +165,9 @@ class CorrectDialog(DraftedDialog):
         self.to.setEnabled(act == Act.MOVE)
         self.to.setCurrentIndex(-1)
         self.form.setRowVisible(self.to, act == Act.MOVE)
+        found = self._entry()
+        if found is not None:
+            self._name_gas(found)
         self._changed()
 
     def _changed(self) -> None:
@@ -211,13 +183,13 @@ class CorrectDialog(DraftedDialog):
         if found is None:
             self.refuse(self.tr("Choose what was logged."))
             return
-        if not self.reason.text().strip():
-            self.refuse(self.tr("Give the reason in a few words."))
-            self.reason.setFocus()
-            return
         if self.act.currentData() == Act.MOVE and self.to.currentData() is None:
             self.refuse(self.tr("Choose the right patient."))
             self.to.setFocus()
+            return
+        if not self.reason.text().strip():
+            self.refuse(self.tr("Give the reason in a few words."))
+            self.reason.setFocus()
             return
         try:
             self._ask(found)
@@ -225,21 +197,22 @@ class CorrectDialog(DraftedDialog):
             self.refuse(sentence(error.message, self._reader))
 
     def _ask(self, found: Entry) -> None:
-        act, reason = self.act.currentData(), self.reason.text()
-        if act == Act.WITHDRAW:
-            request: object = correction.WithdrawalRequest(found.episode, found.id, reason)
-            self._model.ask(correction.withdraw, request, done=self._done, failed=self._failed)
-        elif act == Act.MOVE:
-            request = correction.MoveRequest(found.episode, found.id, self.to.currentData(), reason)
-            self._model.ask(correction.move, request, done=self._done, failed=self._failed)
-        else:
-            self._sent = self._right(found)
-            self._model.ask(correction.correct, self._sent, done=self._done, failed=self._failed)
+        self._sent = self._right(found)
+        do: dict[Act, Callable[..., Outcome[Recorded]]]
+        do = {Act.WITHDRAW: correction.withdraw, Act.MOVE: correction.move, Act.CORRECT: correction.correct}
+        self._model.ask(do[self.act.currentData()], self._sent, done=self._done, failed=self._failed)
 
-    def _right(self, found: Entry) -> correction.CorrectionRequest:
+    def _right(self, found: Entry) -> correction.Request:
+        act, reason = self.act.currentData(), self.reason.text()
+        confirmed, alone = self._confirmed, self.of.currentData() == Of.ONE
+        if act == Act.WITHDRAW:
+            return correction.WithdrawalRequest(found.episode, found.id, reason, confirmed, alone)
+        if act == Act.MOVE:
+            to = self.to.currentData()
+            return correction.MoveRequest(found.episode, found.id, to, reason, confirmed, alone)
         value, unit = self._typed(found)
-        reason, at = self.reason.text(), self._at(found)
-        return correction.CorrectionRequest(found.episode, found.id, reason, value, unit, at, self._confirmed)
+        at = self._at(found)
+        return correction.CorrectionRequest(found.episode, found.id, reason, value, unit, at, confirmed, alone)
 
     def _typed(self, found: Entry) -> tuple[str | None, str]:
         text = self.value.text().strip()
@@ -258,8 +231,25 @@ class CorrectDialog(DraftedDialog):
         return typed_near(text, found.at, self._model.session.now(), self._reader.zone)
 
     def _done(self, outcome: Outcome[Recorded]) -> None:
-        self.recorded.emit(outcome.value)
+        self.recorded.emit(outcome.value, self._told(outcome.value))
         self.accept()
+
+    def _told(self, made: Recorded) -> str:
+        """What was done to which values, of which moment, and for whom."""
+        by_id = {s.entry.id: s.entry for s in self._record.standing}
+        olds = [by_id[e.replaces] for e in made.entries]
+        what = ", ".join(named_value(e, self._reader) for e in olds)
+        new = ", ".join(named_value(e, self._reader) for e in made.entries)
+        told = {
+            Action.MOVE: self.tr("Moved from {label} to {to}: {what} of {when}."),
+            Action.WITHDRAW: self.tr("Withdrawn for {label}: {what} of {when}."),
+        }.get(made.entries[0].action, self.tr("Corrected for {label}: {what} of {when} to {new} of {then}."))
+        zone = self._reader.zone
+        return told.format(
+            label=self._labels.get(self._record.key, self._record.key), what=what, new=new,
+            to=self._labels.get(made.episode, made.episode),
+            when=wall(olds[0].at, zone), then=wall(made.entries[0].at, zone),
+        )  # fmt: skip
 
     def _failed(self, failure: Failure) -> None:
         if failure.message.key == "line.unconfirmed" and self._sent is not None:
@@ -269,7 +259,7 @@ class CorrectDialog(DraftedDialog):
         self.refuse(sentence(failure.message, self._reader))
 
     def _asked(self, outcome: Outcome[tuple[Message, ...]]) -> None:
-        """The right value raises questions: pressing again says yes to them."""
+        """What is to be recorded raises questions: pressing again says yes to them."""
         if not self._still_sent():
             return
         self._confirmed = True

@@ -134,11 +134,15 @@ class TakenDialog(FittedDialog):
             return
         if self._meant != source.id:
             self._meant = source.id
+            one, many = self.tr("1 entry"), self.tr("{count} entries")
+            entries = (one if source.entries == 1 else many).format(count=source.entries)
+            one, many = self.tr("1 device sample"), self.tr("{count} device samples")
+            samples = (one if source.samples == 1 else many).format(count=source.samples)
             text = self.tr(
-                "{name}: its {entries} entries and {samples} device samples would no longer count. They stay visible "
-                "as withdrawn. What somebody has corrected since stays as corrected."
+                "{name}: {entries} and {samples} of it would no longer count. They stay visible as withdrawn. What "
+                "somebody has corrected since stays as corrected."
             )
-            self.said.setText(text.format(name=source.name, entries=source.entries, samples=source.samples))
+            self.said.setText(text.format(name=source.name, entries=entries, samples=samples))
             self.go.setText(self.tr("Yes, withdraw it"))
             return
         self.go.setEnabled(False)

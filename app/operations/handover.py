@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 from app.operations.as_known import CameLater, LaterRequest, came_later
 from app.operations.episode import load
 from app.operations.last_handover import KIND, ClosingFacts, Comparer, Handed, handed_before
+from app.operations.last_handover import facts_of as facts_closed
 from app.operations.outcome import Outcome, report
 from app.operations.policy import in_force
 from core.figures.shift import ShiftFigures, WardShift, episode_shift, stands_in_shift
@@ -150,6 +151,15 @@ def closed_list(store: Store, who: str, now: Instant, request: None) -> Outcome[
     """Every closed handover, the newest first."""
     found = tuple(d for d in reversed(store.documents()) if d.kind == KIND)
     return Outcome(found, store.head())
+
+
+def closed_of_shift(
+    store: Store, who: str, now: Instant, request: tuple[Instant, Instant]
+) -> Outcome[tuple[DocumentFacts, ...]]:
+    """Every closed handover of the shift from start to end, the newest first."""
+    found = closed_list(store, who, now, None).value
+    own = tuple(d for d in found if (f := facts_closed(d)).start == request[0] and f.end == request[1])
+    return Outcome(own, store.head())
 
 
 def closed(store: Store, who: str, now: Instant, request: str) -> Outcome[bytes]:

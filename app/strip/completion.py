@@ -52,15 +52,24 @@ def completions(text: str, cursor: int, most: int = 6) -> tuple[str, ...]:
     """What the word at the cursor could become: a unit behind a value, a choice behind its channel, else a channel,
     mode or event; nothing for times and whole words.
 
-    >>> completions("ipa", 3), completions("paco2 8.3 k", 11), completions("acvpu v", 7)
-    (('ipap',), ('kPa',), ('voice',))
+    >>> completions("ipa", 3), completions("paco2 8.3 k", 11), completions("acvpu v", 7), completions("mask o", 6)
+    (('ipap',), ('kPa',), ('voice',), ('off', 'on'))
     """
     start, token = token_at(text, cursor)
     before = text[:start].casefold().split()
     if not token or before[-1:] in (["note"], ["told"], ["drug"]):
         return ()
     low = token.casefold()
-    return (_choices(before, low) or _units(before, token) + _words(low))[:most]
+    return (_choices(before, low) or _rest_of_words(before, low) or _units(before, token) + _words(low))[:most]
+
+
+def _rest_of_words(before: list[str], low: str) -> tuple[str, ...]:
+    """The rest of names of several words that begin with what stands there: `mask o`."""
+    for count in (2, 1):
+        typed = " ".join([*before[-count:], low])
+        if len(before) >= count and (found := [w for w in words() if w.startswith(typed) and w != typed]):
+            return tuple(w[len(typed) - len(low) :] for w in found)
+    return ()
 
 
 def _words(low: str) -> tuple[str, ...]:

@@ -10,7 +10,13 @@ from app.strip.completion import completions
 
 
 class LineField(QLineEdit):
-    """The line itself. Tab completes, Esc leaves, Ctrl+Z on an empty line is the window's undo."""
+    """The line itself. Tab completes, Esc leaves, Ctrl+Z on an empty line is the window's undo.
+
+    No line begins with the key that leads to it. `whole` says that a question is asked about what stands there: then
+    letters typed behind it are a word of their own.
+    """
+
+    whole = False
 
     left = Signal()
     completion_wanted = Signal()
@@ -38,4 +44,13 @@ class LineField(QLineEdit):
             return
         if event.isAutoRepeat() and event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
             return  # a key held down is one press, and no yes to what it brought up
+        at_start = self.cursorPosition() == 0 or self.selectionStart() == 0
+        if event.text() == "/" and at_start:
+            return
+        text = self.text()
+        at_end = self.cursorPosition() == len(text) and not self.hasSelectedText()
+        if self.whole and at_end and event.text().isalpha() and text[-1:].isalpha():
+            self.insert(" ")
+        if event.text() and event.text().isprintable():
+            self.whole = False
         super().keyPressEvent(event)

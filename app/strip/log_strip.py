@@ -6,6 +6,7 @@ once the preview of that very text is shown: nothing is recorded unseen.
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from html import escape
 
 from PySide6.QtCore import Qt, Signal
@@ -19,8 +20,9 @@ from app.session.failure import Failure
 from app.session.model import SessionModel
 from app.session.readers import reader_at
 from app.strip.completion import completed, completions
+from app.strip.left_lines import LeftLines
 from app.strip.one_key_buttons import CHECKED, GAS_SENT, MASK, TOLD
-from app.strip.preview_words import preview_words, recorded_words, undone_words
+from app.strip.preview_words import preview_words, recorded_words, taken_back_words, undone_words
 from app.strip.reading_time import ReadingTime
 from app.strip.said_html import completion_html, marked, preview_html, quiet
 from app.strip.sent_lines import Sent, SentLines
@@ -30,6 +32,9 @@ from app.strip.strip_frame import StripFrame
 from app.strip.undo_stack import UndoStack
 from app.words import Reader, sentence
 from core.record.episode import Episode
+
+_NOT_SHOWN = (State.REFUSED, State.IDLE, State.UNDOING)
+"""What the line would record does not stand under it."""
 
 
 class LogStrip(StripFrame):
@@ -52,7 +57,8 @@ class LogStrip(StripFrame):
         self.settle = SettleTime()
         self._labels: dict[str, str] = {}
         self._news: dict[str, str] = {}
-        self._undo, self._lines = UndoStack(), SentLines()
+        self._undo, self._lines, self._left = UndoStack(), SentLines(), LeftLines()
+        self._told_of: Recorded | None = None
         self._off_mask = False
         self._closed = ""
         self._connect()
@@ -74,10 +80,12 @@ class LogStrip(StripFrame):
     def set_patient(
         self, record: Episode | None, label: str, zone: str, gas_unit: str, *, off_mask: bool = False
     ) -> None:
-        """For whom the strip logs. A half-typed line for another patient is taken away, never carried over."""
+        """For whom the strip logs. A line half typed for another is never carried over: it waits for its own."""
         other = (record.key if record is not None else None) != (
             self._record.key if self._record is not None else None
         )
+        if other and self._record is not None and not self._closed:
+            self._left.keep(self._record.key, self.line.text())
         self._record, self._label, self._zone, self._gas_unit = record, label, zone, gas_unit
         if record is not None:
             self._labels[record.key] = label
@@ -91,7 +99,9 @@ class LogStrip(StripFrame):
             self._clear()
             self._put_back()
         if record is not None and record.key in self._news:
-            self._become(State.TOLD, escape(self._news.pop(record.key)))
+            newest = self._undo.newest
+            of = newest if newest is not None and newest.episode == record.key else None
+            self._become(State.TOLD, escape(self._news.pop(record.key)), of=of)
 
     def set_closed(self, why: str) -> None:
         """Take no line, and say why; "" opens the strip again. What was half typed is taken away."""
@@ -227,7 +237,7 @@ class LogStrip(StripFrame):
         if self._awaited is not None:
             self._pressed_early = True
             self._say_reading()
-        elif self.state in (State.REFUSED, State.IDLE) and self._preview is None and self.line.text().strip():
+        elif self.state in _NOT_SHOWN and self._preview is None and self.line.text().strip():
             self._edited(self.line.text())  # it came back: shown anew before it is recorded
         elif not self.settle.is_over:
             return
@@ -267,11 +277,16 @@ class LogStrip(StripFrame):
 
     def _put_back(self) -> None:
         """Put the line that could not be recorded back for its patient; Enter shows anew what it would record."""
-        if self._record is not None and not self.line.text():
-            self.line.setText(self._lines.back_for(self._record.key))
+        if self._record is None or self.line.text():
+            return
+        failed = self._lines.back_for(self._record.key)
+        self.line.setText(failed or self._left.back_for(self._record.key))
+        if self.line.text() and not failed:
+            how = self.tr("Enter shows what it would record, Esc empties the line.")
+            self._become(State.IDLE, marked(self.tr("This line was left here and is not recorded."), how))
 
-    def take(self, recorded: Recorded) -> None:
-        """Something was recorded, here or by a form: remember it for the undo, and say so."""
+    def take(self, recorded: Recorded, told: str = "") -> None:
+        """Something was recorded, here or by a form: remember it for the undo, and say so, in the words it brings."""
         self.remember(recorded)
         if self.line.text().strip():  # the next line is being typed: its preview is what must stand here
             self._came_before = True
@@ -280,7 +295,8 @@ class LogStrip(StripFrame):
             return
         whom = self.tr("Recorded for {label}").format(label=self._labels.get(recorded.episode, recorded.episode))
         what = recorded_words(recorded.entries, self._model.session.now(), self._reader())
-        self._become(State.TOLD, marked(f"{whom}, {what}.", self.tr("Ctrl+Z undoes it.")))
+        said = marked(told or f"{whom}, {what}.", self.tr("Ctrl+Z undoes it."))
+        self._become(State.TOLD, said, of=recorded)
         self.recorded.emit(recorded)
 
     # undo
@@ -289,22 +305,45 @@ class LogStrip(StripFrame):
         """Something recorded elsewhere in the window (a form, a correction) that undo shall take back."""
         self._undo.push(recorded)
 
+    def know_labels(self, labels: Mapping[str, str]) -> None:
+        """What episodes are called that were not in hand yet."""
+        self._labels.update(labels)
+
     @property
     def can_undo(self) -> bool:
         """Whether there is anything to take back."""
         return bool(self._undo)
 
     def undo(self) -> None:
-        """Take back the last recording made here."""
+        """Take back the last recording made here: at once where its words stand here and are of the patient in hand,
+        else only once it has been said what that is."""
+        last = self._undo.newest
         if self._closed:
             self._clear()
             return
-        if not self._undo:
+        if last is None:
             self._become(State.TOLD, escape(self.tr("Nothing to undo.")))
             return
-        last = self._undo.take()
+        here = last.episode == self.patient
+        if self._told_of is not last or not (here or self.state is State.UNDOING):
+            self._ask_undo(last, here=here)
+            return
+        if not self.settle.is_over:
+            return
+        self._undo.take()
         request = correction.UndoRequest(last.episode, last.ids)
         self._model.ask(correction.undo, request, done=self._undone, failed=self._not_undone)
+
+    def _ask_undo(self, last: Recorded, *, here: bool) -> None:
+        """Say what would be taken back, and for whom; the next Ctrl+Z does it."""
+        self._forget_preview()
+        label = self._labels.get(last.episode, last.episode)
+        what = taken_back_words(last.entries, self._model.session.now(), self._reader())
+        told = self.tr("Undo for {label}: {what}?").format(label=label, what=what)
+        other = "" if here else self.tr("{label} is not the patient in hand.").format(label=label) + " "
+        rest = other + self.tr("Ctrl+Z again takes it back, Esc leaves it.")
+        self._become(State.UNDOING, marked(told, rest), of=last)
+        self.settle.start()
 
     def _not_undone(self, failure: Failure) -> None:
         """What somebody has changed since can never be taken back; anything else may be tried again."""
@@ -312,7 +351,8 @@ class LogStrip(StripFrame):
             self._undo.taken_back()
         else:
             self._undo.failed()
-        self._become(State.REFUSED, marked(self.tr("Not undone."), sentence(failure.message, self._reader())))
+        why = marked(self.tr("Not undone."), sentence(failure.message, self._reader()))
+        self._become(State.REFUSED, why, of=self._undo.newest if failure.message.key != "undo.superseded" else None)
 
     def _undone(self, outcome: Outcome[Recorded]) -> None:
         self._undo.taken_back()
@@ -352,7 +392,9 @@ class LogStrip(StripFrame):
         )
         return quiet(text, self._theme.colours.ink_quiet)
 
-    def _become(self, state: State, html: str) -> None:
-        self.state = state
+    def _become(self, state: State, html: str, of: Recorded | None = None) -> None:
+        """`of`: the recording that the words are about, so that a Ctrl+Z is known to mean it."""
+        self.state, self._told_of = state, of
+        self.line.whole = state is State.ASKING
         self.said.setText(html)
         self.said.setAccessibleName(self.plain())

@@ -15,7 +15,7 @@ from app.telling.support_course import SHOWN
 from app.words import Reader, sentence
 from core.judgement.setting_change import effect_of_change
 from core.record.channels import CHANNELS, Group, Kind
-from core.record.entries import NewEntry
+from core.record.entries import Action, NewEntry
 from core.record.episode import Episode
 from core.record.instant import HOUR, Instant
 from core.record.reading import Reading
@@ -97,6 +97,18 @@ def undone_words(entries: Sequence[NewEntry]) -> str:
         return ", ".join(names)
     told = translate("strip", "{names} and {count} more")
     return told.format(names=", ".join(names[: MOST_NAMES - 1]), count=len(names) - MOST_NAMES + 1)
+
+
+def taken_back_words(entries: Sequence[NewEntry], now: Instant, reader: Reader) -> str:
+    """What an undo would take back, before it does."""
+    action = entries[0].action
+    if action is Action.WITHDRAW:
+        return translate("strip", "the withdrawal of {what}").format(what=undone_words(entries))
+    if action in (Action.FLAG, Action.DUE):
+        return translate("strip", "the word '{what}'").format(what=entries[0].words or "")
+    text = {Action.CORRECT: translate("strip", "the correction to {what}"),
+            Action.MOVE: translate("strip", "the move to this patient of {what}")}.get(action, "{what}")  # fmt: skip
+    return text.format(what=recorded_words(entries, now, reader))
 
 
 def _when(at: Instant, now: Instant, zone: str) -> str:

@@ -12,3 +12,4 @@ class State(StrEnum):
     ASKING = "asking"
     REFUSED = "refused"
     TOLD = "told"
+    UNDOING = "undoing"

@@ -21,6 +21,11 @@ class UndoStack:
     def __bool__(self) -> bool:
         return bool(self._kept)
 
+    @property
+    def newest(self) -> Recorded | None:
+        """What would be taken back."""
+        return self._kept[-1] if self._kept else None
+
     def push(self, recorded: Recorded) -> None:
         """Something was recorded."""
         self._kept = [*self._kept, recorded][-MOST:]

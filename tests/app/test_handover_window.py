@@ -144,6 +144,23 @@ def test_a_handover_that_was_closed_is_what_the_page_compares_with_at_once(qtbot
     assert "A handover of this shift was closed 28-Mar-2026 05:30." in " ".join(view.plain().split())
 
 
+def test_closing_a_handover_again_says_that_one_is_closed(qtbot, window):
+    for n in range(3):
+        window.doers.review.do_close_handover()
+        dialog = window.doers.review._dialog
+        settled(qtbot, window)
+        assert dialog.already.isVisible() is (n > 0)
+        if n == 1:
+            assert dialog.already.text().startswith("A handover of this shift is closed already: ")
+            assert "AB to CD, at 28-Mar-2026 05:30." in dialog.already.text()
+        if n == 2:
+            assert dialog.already.text().startswith("2 handovers of this shift are closed already, the last: ")
+        dialog.given.setText("AB")
+        dialog.taken.setText("CD")
+        dialog.submit()
+        until(qtbot, lambda: window.doers.review._dialog is None)
+
+
 def test_paper_chosen_once_is_kept(qtbot, window, tmp_path):
     window.doers.review.do_close_handover()
     dialog = window.doers.review._dialog

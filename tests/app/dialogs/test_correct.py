@@ -3,7 +3,7 @@
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QComboBox
 
-from app.dialogs.correct import Act, CorrectDialog
+from app.dialogs.correct import Act, CorrectDialog, Of
 from tests.support.open_window import NOW, dialog_of, settled, until
 
 
@@ -59,7 +59,9 @@ def test_the_right_time_is_on_the_night_of_the_entry_and_a_gas_is_held_against_i
     dialog.go.click()
     until(qtbot, lambda: window.feed.answers["bed-7"].record.latest("paco2") == 69)
     corrected = [s.entry for s in window.feed.answers["bed-7"].record.standing if s.corrected]
-    assert [(e.channel, e.at) for e in corrected] == [("paco2", NOW - 144 * 60_000_000)]
+    assert {e.at for e in corrected} == {NOW - 144 * 60_000_000}  # the time is that of the whole gas
+    assert {"ph", "paco2", "pao2"} <= {e.channel for e in corrected}
+    assert [e.channel for e in corrected if e.number == 69] == ["paco2"]
 
 
 def test_a_value_is_withdrawn(qtbot, window):
@@ -86,17 +88,83 @@ def test_the_dialog_names_its_patient_in_large_and_no_other_until_a_move(qtbot, 
     dialog.reject()
 
 
-def test_a_value_moves_to_the_right_patient(qtbot, window):
+def test_a_value_moves_to_the_right_patient_who_is_asked_for_before_the_reason(qtbot, window):
     dialog = open_correct(qtbot, window)
+    seconds = [100.0]
+    dialog.settle.clock = lambda: seconds[0]
     choose(dialog, "Respiratory rate", "27")
+    assert not dialog.of.isVisible()
     dialog.act.setCurrentIndex(dialog.act.findData(Act.MOVE))
-    dialog.reason.setText("wrong bed")
     assert dialog.to.currentIndex() == -1
     dialog.go.click()
     assert dialog.wrong.text() == "Choose the right patient."
     dialog.to.setCurrentIndex(dialog.to.findData("bed-3"))
     dialog.go.click()
+    assert "reason" in dialog.wrong.text()
+    dialog.reason.setText("wrong bed")
+    dialog.go.click()
+    until(qtbot, lambda: "is logged for this minute already" in dialog.wrong.text())  # bed 3 has a rate of its own
+    seconds[0] += 1
+    dialog.go.click()
     until(qtbot, lambda: len(window.feed.answers["bed-3"].record.number("rr")) == 2)
+
+
+def test_a_gas_moves_whole_says_to_whom_and_one_undo_brings_it_back(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "PaCO2", "71")
+    assert dialog.of.isVisible()
+    assert dialog.of.currentData() == Of.WHOLE
+    assert "pH" in dialog.of.currentText()
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.MOVE))
+    dialog.to.setCurrentIndex(dialog.to.findData("bed-3"))
+    dialog.reason.setText("wrong bed")
+    seconds = [100.0]
+    dialog.settle.clock = lambda: seconds[0]
+    gases = gas_count(window, "bed-7"), gas_count(window, "bed-3")
+    dialog.go.click()
+    settled(qtbot, window)
+    if dialog.isVisible():  # what bed 3 makes of it is asked
+        seconds[0] += 1
+        dialog.go.click()
+    until(qtbot, lambda: (gas_count(window, "bed-7"), gas_count(window, "bed-3")) == (gases[0] - 1, gases[1] + 1))
+    told = window.strip.plain()
+    assert told.startswith("Moved from Bed 7 to Bed 3: ")
+    assert "pH 7.24" in told
+    assert "PaCO2 71 mmHg" in told
+    window.strip.settle.clock = lambda: seconds[0]
+    window.actions_by_key["undo"].trigger()  # it went to a bed that is not in hand: asked first
+    assert window.strip.plain().startswith("Undo for Bed 3: the move to this patient of ")
+    assert "Bed 3 is not the patient in hand." in window.strip.plain()
+    seconds[0] += 1
+    window.actions_by_key["undo"].trigger()
+    until(qtbot, lambda: (gas_count(window, "bed-7"), gas_count(window, "bed-3")) == gases)
+
+
+def gas_count(window, key):
+    return len(window.feed.answers[key].record.gases)
+
+
+def test_one_value_of_a_gas_alone_is_asked_about(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "pH", "7.24")
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.WITHDRAW))
+    dialog.of.setCurrentIndex(dialog.of.findData(Of.ONE))
+    dialog.reason.setText("clotted")
+    dialog.go.click()
+    until(qtbot, lambda: "Only this value?" in dialog.wrong.text())
+    dialog.of.setCurrentIndex(dialog.of.findData(Of.WHOLE))
+    assert dialog.wrong.text() == ""
+
+
+def test_the_chosen_value_stays_in_sight_when_fields_take_its_room(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    dialog.resize(dialog.width(), dialog.height() - 200)
+    last = dialog.list.topLevelItem(dialog.list.topLevelItemCount() - 1)
+    dialog.list.setCurrentItem(last)
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.MOVE))
+    qtbot.wait(30)
+    shown = dialog.list.visualItemRect(last)
+    assert dialog.list.viewport().rect().contains(shown.center())
 
 
 def test_a_wrong_value_is_refused_and_an_unusual_one_asked_about(qtbot, window):

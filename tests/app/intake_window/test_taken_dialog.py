@@ -22,7 +22,7 @@ def test_a_file_is_listed_and_withdrawn_by_two_presses(qtbot, window, tmp_path):
     dialog.table.selectRow(0)
     head = window.model.session.head
     dialog.go.click()
-    assert "1 entries" in dialog.said.text()
+    assert "1 entry and " in dialog.said.text()
     assert window.model.session.head == head, "the first press only says what would go"
     dialog.go.click()
     until(qtbot, lambda: window.model.session.head > head)

@@ -70,3 +70,13 @@ def test_every_offered_word_is_understood_by_the_line():
 
     known = words_of_channels().keys() | {m.casefold() for m in MODES}
     assert [w for w in words() if w not in known] == []
+
+
+@pytest.mark.parametrize(
+    ("typed", "rest"),
+    [("mask o", {"off", "on"}), ("rr 20 mask of", {"off"}), ("gas s", {"sent"})],
+)
+def test_the_rest_of_a_name_of_several_words_comes_before_anything_else(typed, rest):
+    assert set(completions(typed, len(typed))) == rest
+    done, _ = completed(typed, len(typed), completions(typed, len(typed))[0])
+    assert completions(done, len(done)) == ()

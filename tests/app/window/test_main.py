@@ -56,6 +56,14 @@ def test_a_change_is_logged_by_keys_seen_everywhere_and_undone(qtbot, window):
     until(qtbot, lambda: window.pages.name == "episode")
     assert window.pages.episode.stack.spec.ribbon.steps[-1].ipap == 22
 
+    seconds = [100.0]
+    window.strip.settle.clock = lambda: seconds[0]
+    qtbot.keyClick(window, Key.Key_Z, Mod.ControlModifier)  # its words stand there no more: said before it is done
+    assert window.strip.plain().startswith("Undo for Bed 7: now (05:30): IPAP 22 cmH2O, EPAP 6 cmH2O, FiO2 35 %?")
+    qtbot.keyClick(window, Key.Key_Z, Mod.ControlModifier)  # the second half of a double press
+    settled(qtbot, window)
+    assert len(settings_in(window)) > len(before)
+    seconds[0] += 1
     qtbot.keyClick(window, Key.Key_Z, Mod.ControlModifier)
     until(qtbot, lambda: window.pages.episode.stack.spec.ribbon.steps[-1].ipap == 18)
     assert settings_in(window) == before
@@ -161,6 +169,76 @@ def test_a_half_typed_line_never_goes_to_another_patient(qtbot, window):
     assert window.strip.whom.text() == "Bed 3"
     assert window.strip.line.text() == ""
     assert window.strip.state == "idle"
+
+
+def test_a_half_typed_line_waits_for_its_own_patient(qtbot, window):
+    window.strip.focus()
+    type_line(qtbot, window, "22/6 3")
+    window.select("bed-3")
+    type_line(qtbot, window, "rr 2")
+    window.select("bed-7")
+    assert window.strip.line.text() == "22/6 3"
+    assert window.strip.plain().startswith("This line was left here and is not recorded.")
+    head = window.model.session.head
+    window.strip.focus()
+    qtbot.keyClick(window.strip.line, Key.Key_End)
+    qtbot.keyClicks(window.strip.line, "5")
+    settled(qtbot, window)
+    assert "FiO2 35 %" in window.strip.plain()
+    assert window.model.session.head == head
+    qtbot.keyClick(window.strip.line, Key.Key_Escape)
+    window.select("bed-3")
+    assert window.strip.line.text() == "rr 2"
+    window.select("bed-7")
+    assert window.strip.line.text() == ""
+
+
+def test_a_line_that_comes_back_is_shown_before_it_is_recorded(qtbot, window):
+    window.strip.focus()
+    type_line(qtbot, window, "rr 24")
+    window.select("bed-3")
+    window.select("bed-7")
+    head = window.model.session.head
+    qtbot.keyClick(window.strip.line, Key.Key_Return)
+    settled(qtbot, window)
+    assert window.model.session.head == head
+    assert "Respiratory rate 24/min" in window.strip.plain()
+
+
+def test_an_undo_that_is_said_is_left_by_escape_and_by_another_patient(qtbot, window):
+    window.strip.focus()
+    type_line(qtbot, window, "22/6")
+    qtbot.keyClick(window.strip.line, Key.Key_Return)
+    until(qtbot, lambda: window.strip.can_undo)
+    window.select("bed-3")
+    window.actions_by_key["undo"].trigger()
+    assert "Bed 7 is not the patient in hand." in window.strip.plain()
+    qtbot.keyClick(window.strip.line, Key.Key_Escape)
+    assert window.strip.state == "idle"
+    window.actions_by_key["undo"].trigger()
+    window.select("bed-7")
+    assert window.strip.state == "idle"
+    settled(qtbot, window)
+    assert window.strip.can_undo
+
+
+def test_the_key_to_the_line_is_no_part_of_it_and_a_word_after_a_question_is_one_of_its_own(qtbot, window):
+    window.strip.focus()
+    type_line(qtbot, window, "/rr28")
+    assert window.strip.line.text() == "rr28"
+    assert "Respiratory rate 28/min" in window.strip.plain()
+    window.strip.focus()  # all is chosen: the key replaces nothing
+    qtbot.keyClick(window.strip.line, Key.Key_Slash)
+    assert window.strip.line.text() == "rr28"
+    window.strip.leave()
+    window.strip.focus()
+    type_line(qtbot, window, "rr 55 mask off")
+    qtbot.keyClick(window.strip.line, Key.Key_Return)
+    assert window.strip.state == "asking"
+    qtbot.keyClicks(window.strip.line, "hr 90")
+    settled(qtbot, window)
+    assert window.strip.line.text() == "rr 55 mask off hr 90"
+    assert "Heart rate 90/min" in window.strip.plain()
 
 
 def test_the_keyboard_alone_goes_through_the_ward_and_the_episodes(qtbot, window):
