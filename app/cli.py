@@ -65,7 +65,7 @@ def parser() -> argparse.ArgumentParser:
         made.set_defaults(module=module or name)
         return made
 
-    for add in (_showing, _recording, _printing, _keeping):
+    for add in (_showing, _recording, _printing, _safety, _files, _running_the_ward):
         add(command)
     return top
 
@@ -194,7 +194,7 @@ def _printing(command: Command) -> None:
     screens.add_argument("--out", type=Path, required=True, metavar="FOLDER")
 
 
-def _keeping(command: Command) -> None:
+def _safety(command: Command) -> None:
     verify = command("verify", "check the store: file, chain, safeguards, rules")
     verify.add_argument("--witness", type=Path, metavar="FILE",
                         help="check that every head this file was given is still there")  # fmt: skip
@@ -208,6 +208,9 @@ def _keeping(command: Command) -> None:
     salvage = command("salvage", "save what can be read of a damaged store into a new one")
     salvage.add_argument("old", type=Path, help="the damaged store; it is not changed")
     salvage.add_argument("new", type=Path, help="the store to make")
+
+
+def _files(command: Command) -> None:
     export = command("export", "write entries and device samples as a log file (CSV) that intake takes")
     export.add_argument("--out", type=Path, required=True, metavar="FILE")
     _may_replace(export)
@@ -227,6 +230,9 @@ def _keeping(command: Command) -> None:
     mapping.add_argument("subject", nargs="?", help="a file (propose, put) or a name (show, forget)")
     mapping.add_argument("--name", default="", help="the name to keep it by")
     _about_writing(mapping)
+
+
+def _running_the_ward(command: Command) -> None:
     archive = command("archive", "ended episodes: list, copy into an archive, remove after the retention time")
     archive.add_argument("what", choices=("list", "write", "remove", "retention"))
     archive.add_argument(

@@ -6,10 +6,8 @@ from pathlib import Path
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import (
-    QAbstractItemView,
     QFileDialog,
     QHBoxLayout,
-    QHeaderView,
     QLabel,
     QMessageBox,
     QPushButton,
@@ -20,8 +18,8 @@ from PySide6.QtWidgets import (
 )
 
 from app.dialogs.asking import AskingDialog
-from app.look.copying import can_be_copied
 from app.look.formats import counted, day
+from app.look.read_table import read_table
 from app.look.theme import Theme
 from app.operations import archive as operations
 from app.operations.outcome import Outcome
@@ -71,16 +69,7 @@ class ArchiveDialog(AskingDialog):
 
     def _make_table(self) -> QTableWidget:
         heads = [self.tr("Episode"), self.tr("Ended"), self.tr("May be removed from")]
-        table = QTableWidget(0, len(heads))
-        can_be_copied(table)
-        table.setAccessibleName(self.tr("Ended episodes"))
-        table.setHorizontalHeaderLabels(heads)
-        table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
-        table.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Stretch)
-        table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        table.verticalHeader().hide()
-        return table
+        return read_table(self.tr("Ended episodes"), heads, many=True)
 
     # the list
 

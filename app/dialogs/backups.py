@@ -6,10 +6,8 @@ from pathlib import Path
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
-    QAbstractItemView,
     QFileDialog,
     QHBoxLayout,
-    QHeaderView,
     QLabel,
     QPushButton,
     QTableWidget,
@@ -19,8 +17,8 @@ from PySide6.QtWidgets import (
 
 from app.dialogs.asking import AskingDialog
 from app.keeping.backups import BackupKeeper
-from app.look.copying import can_be_copied
 from app.look.formats import wall
+from app.look.read_table import read_table
 from app.look.theme import Theme
 from app.operations import backup as backups
 from app.session.failure import Failure
@@ -47,11 +45,9 @@ class BackupsDialog(AskingDialog):
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         self.go.setText(self.tr("Back up now"))
         self._keeper, self._store, self._reader = keeper, store, reader
-        self.told, self.table = QLabel(), QTableWidget(0, 3)
-        can_be_copied(self.table)
+        self.told, self.table = QLabel(), self._made_table()
         self.told.setWordWrap(True)
         self.told.setTextFormat(Qt.TextFormat.PlainText)
-        self._set_table()
         self.restore, self.folder = QPushButton(self.tr("Restore this one...")), QPushButton(self.tr("Folder..."))
         self.witness = QPushButton(self.tr("Witness file..."))
         self.witness.setToolTip(
@@ -73,17 +69,9 @@ class BackupsDialog(AskingDialog):
         self.resize(theme.px(720), theme.px(440))
         self.fill()
 
-    def _set_table(self) -> None:
+    def _made_table(self) -> QTableWidget:
         heads = [self.tr("Taken"), self.tr("File"), self.tr("Size")]
-        self.table.setHorizontalHeaderLabels(heads)
-        self.table.setAccessibleName(self.tr("Backups"))
-        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
-        self.table.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
-        self.table.horizontalHeader().setSectionResizeMode(1, QHeaderView.ResizeMode.Stretch)
-        self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        self.table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
-        self.table.verticalHeader().hide()
+        return read_table(self.tr("Backups"), heads, wide=1)
 
     def fill(self) -> None:
         """List what lies in the folder, the newest first."""

@@ -7,9 +7,7 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
-    QAbstractItemView,
     QHBoxLayout,
-    QHeaderView,
     QLabel,
     QPushButton,
     QTableWidget,
@@ -18,9 +16,9 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.look.copying import can_be_copied
 from app.look.fitted import FittedDialog, fit
 from app.look.formats import wall
+from app.look.read_table import read_table
 from app.look.theme import Theme
 
 if TYPE_CHECKING:
@@ -40,46 +38,42 @@ class ClosedHandoversDialog(FittedDialog):
         self._found = found
         self.setWindowTitle(self.tr("Closed handovers"))
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self.table = self._filled_table(found, zone)
+        none = QLabel(self.tr("No handover was closed yet. Ctrl+Shift+H closes this shift's."))
+        none.setVisible(not found)
+        column = QVBoxLayout(self)
+        column.addWidget(none)
+        column.addWidget(self.table, 1)
+        column.addLayout(self._foot(has_any=bool(found)))
+        if found:
+            self.table.selectRow(0)
+        self.table.itemActivated.connect(self._activated)
+        fit(self, theme, 900, 420)
+
+    def _filled_table(self, found: Sequence[DocumentFacts], zone: str) -> QTableWidget:
         heads = [self.tr("Handover"), self.tr("Closed"), self.tr("By"), self.tr("Ledger"), self.tr("SHA-256")]
-        self.table = QTableWidget(len(found), len(heads))
-        can_be_copied(self.table)
-        self.table.setAccessibleName(self.tr("Closed handovers"))
-        self.table.setHorizontalHeaderLabels(heads)
-        self.table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
-        self.table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        self.table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        self.table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
-        self.table.verticalHeader().hide()
+        table = read_table(self.tr("Closed handovers"), heads, wide=0)
+        table.setRowCount(len(found))
         for r, d in enumerate(found):
             for c, text in enumerate((d.name, wall(d.recorded_at, zone), d.by, str(d.seq), d.sha[:16])):
                 item = QTableWidgetItem(text)
                 item.setToolTip(d.sha if c == len(heads) - 1 else text)
-                self.table.setItem(r, c, item)
-        header = self.table.horizontalHeader()
-        header.setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
-        header.setSectionResizeMode(0, QHeaderView.ResizeMode.Stretch)
-        none = QLabel(self.tr("No handover was closed yet. Ctrl+Shift+H closes this shift's."))
-        none.setVisible(not found)
+                table.setItem(r, c, item)
+        return table
+
+    def _foot(self, *, has_any: bool) -> QHBoxLayout:
         self.open_button, self.copy_button = QPushButton(self.tr("Open")), QPushButton(self.tr("Save a copy..."))
         close = QPushButton(self.tr("Leave"))
-        for button in (self.open_button, self.copy_button):
-            button.setEnabled(bool(found))
+        for button, does in ((self.open_button, self._open), (self.copy_button, self._copy)):
+            button.setEnabled(has_any)
+            button.clicked.connect(does)
+        close.clicked.connect(self.close)
         foot = QHBoxLayout()
         foot.addWidget(self.open_button)
         foot.addWidget(self.copy_button)
         foot.addStretch(1)
         foot.addWidget(close)
-        column = QVBoxLayout(self)
-        column.addWidget(none)
-        column.addWidget(self.table, 1)
-        column.addLayout(foot)
-        if found:
-            self.table.selectRow(0)
-        self.open_button.clicked.connect(self._open)
-        self.copy_button.clicked.connect(self._copy)
-        self.table.itemActivated.connect(self._activated)
-        close.clicked.connect(self.close)
-        fit(self, theme, 900, 420)
+        return foot
 
     def chosen(self) -> DocumentFacts | None:
         """The handover whose row is chosen."""

@@ -4,11 +4,9 @@ from __future__ import annotations
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import (
-    QAbstractItemView,
     QCheckBox,
     QFormLayout,
     QHBoxLayout,
-    QHeaderView,
     QLabel,
     QLineEdit,
     QPushButton,
@@ -18,8 +16,8 @@ from PySide6.QtWidgets import (
 )
 
 from app.dialogs.asking import AskingDialog
-from app.look.copying import can_be_copied
 from app.look.formats import day
+from app.look.read_table import read_table
 from app.look.theme import Theme
 from app.operations import people as operations
 from app.operations.outcome import Outcome
@@ -55,17 +53,7 @@ class PeopleDialog(AskingDialog):
 
     def _make_table(self) -> QTableWidget:
         heads = [self.tr("Initials"), self.tr("Role"), self.tr("Since"), self.tr("Signs in")]
-        table = QTableWidget(0, len(heads))
-        can_be_copied(table)
-        table.setAccessibleName(self.tr("People"))
-        table.setHorizontalHeaderLabels(heads)
-        table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
-        table.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Stretch)
-        table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        table.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
-        table.verticalHeader().hide()
-        return table
+        return read_table(self.tr("People"), heads)
 
     def _lay_out(self) -> None:
         row = QHBoxLayout()

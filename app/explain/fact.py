@@ -56,21 +56,24 @@ class Fact(QFrame):
         self._has_value = bool(value) and not value_below
         self._title = _label(title, "quiet" if quiet else "emphasis" if large else "strong")
         words.addLayout(_head(theme, self._title, "" if value_below else value))
-        if value and value_below:
-            words.addWidget(_label(value, "strong"))
-        for mark in marks:
-            words.addWidget(_label(mark, "mark"))
-        for line in lines:
-            words.addWidget(_label(line, "caption"))
+        below = [(value, "strong")] if value and value_below else []
+        below += [(mark, "mark") for mark in marks] + [(line, "caption") for line in lines]
+        for text, role in below:
+            words.addWidget(_label(text, role))
         self._fold_label = _label(fold_word, "caption") if folded else None
-        if self._fold_label is not None:
-            words.addWidget(self._fold_label)
-        self._folded = [_label(text, "caption") for text in folded]
-        for label in self._folded:
-            label.hide()
-            words.addWidget(label)
+        self._folded = self._fold_under(words, folded)
         row.addLayout(words, 1)
         self.why = self._why_button(title) if explanation is not None else None
+
+    def _fold_under(self, words: QVBoxLayout, folded: Sequence[str]) -> list[QLabel]:
+        """What stands hidden under the word that unfolds it."""
+        if self._fold_label is not None:
+            words.addWidget(self._fold_label)
+        labels = [_label(text, "caption") for text in folded]
+        for label in labels:
+            label.hide()
+            words.addWidget(label)
+        return labels
 
     def _why_button(self, title: str) -> QToolButton:
         """A small way in for the mouse; it floats over the corner, so that nothing moves when it comes."""

@@ -57,16 +57,10 @@ class LockPage(QWidget):
         self._card.setProperty("card", True)
         self.title = QLabel()
         self.title.setProperty("role", "title")
-        self.told = QLabel()
-        self.told.setWordWrap(True)
-        self.told.setTextFormat(Qt.TextFormat.PlainText)
-        self.initials, self.secret = QLineEdit(), QLineEdit()
-        self.initials.setMaxLength(MOST_INITIALS)
-        self.secret.setEchoMode(QLineEdit.EchoMode.Password)
-        self.wrong = QLabel()
+        self.told = _wrapped()
+        self.wrong = _wrapped()
         self.wrong.setProperty("role", "strong")
-        self.wrong.setWordWrap(True)
-        self.wrong.setTextFormat(Qt.TextFormat.PlainText)
+        self.initials, self.secret = QLineEdit(), QLineEdit()
         self.go = QPushButton(self.tr("Open"))
         self.go.setProperty("role", "primary")
         self.by_code = QPushButton(self.tr("No PIN, or forgotten..."))
@@ -75,13 +69,26 @@ class LockPage(QWidget):
         self._wait.setInterval(1_000)
         self._wait.timeout.connect(self._count_down)
         self._until, self._wait_words = 0.0, ""
-        self._form = QFormLayout()
-        self._form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
+        self._form, self._column = self._made_form(), QVBoxLayout(self._card)
+        self._lay_out()
+        self.go.clicked.connect(self._given)
+        self.by_code.clicked.connect(self.code_wanted)
+        self.secret.returnPressed.connect(self._given)
+        self.initials.returnPressed.connect(self.secret.setFocus)
+        self.set_theme(theme)
+
+    def _made_form(self) -> QFormLayout:
+        self.initials.setMaxLength(MOST_INITIALS)
+        self.secret.setEchoMode(QLineEdit.EchoMode.Password)
+        form = QFormLayout()
+        form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
         for word, line in ((self.tr("Initials"), self.initials), (self.tr("PIN"), self.secret)):
-            self._form.addRow(label_beside(word, line), line)
-        self.initials.setAccessibleName(self.tr("Initials"))
-        self.secret.setAccessibleName(self.tr("PIN"))
-        self._column = QVBoxLayout(self._card)
+            form.addRow(label_beside(word, line), line)
+            line.setAccessibleName(word)
+        return form
+
+    def _lay_out(self) -> None:
+        """A card in the middle of the page."""
         for part in (self.title, self.told):
             self._column.addWidget(part)
         self._column.addLayout(self._form)
@@ -99,11 +106,6 @@ class LockPage(QWidget):
         outer.addStretch(1)
         outer.addLayout(middle)
         outer.addStretch(1)
-        self.go.clicked.connect(self._given)
-        self.by_code.clicked.connect(self.code_wanted)
-        self.secret.returnPressed.connect(self._given)
-        self.initials.returnPressed.connect(self.secret.setFocus)
-        self.set_theme(theme)
 
     def set_theme(self, theme: Theme) -> None:
         """Take another look or text size."""
@@ -215,3 +217,11 @@ class LockPage(QWidget):
                 self.pin_given.emit(self.initials.text().strip().upper(), self.secret.text())
             else:
                 self.passphrase_given.emit(self.secret.text())
+
+
+def _wrapped() -> QLabel:
+    """A text of one or more lines, never markup."""
+    label = QLabel()
+    label.setWordWrap(True)
+    label.setTextFormat(Qt.TextFormat.PlainText)
+    return label
