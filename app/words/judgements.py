@@ -56,8 +56,9 @@ EVIDENCE: Final[dict[str, str]] = {
         "[[, median {median:q} up to {at:time}]].",
     "evidence.think_of": "Think of {what}.",
     "evidence.timing":
-        "{anchor:pick pressure raised=;else=Judged }{minutes:minutes} after {anchor:pick start=the start;change=the change;"
-        "interface=the new interface;break_end=the end of the break;pressure raised=the pressure was raised;"
+        "{anchor:pick pressure raised=;else=Judged }{minutes:minutes} after "
+        "{anchor:pick start=the start;change=the change;interface=the new interface;break_end=the end of the break;"
+        "pressure raised=the pressure was raised;"
         "else=the change}{anchor:pick pressure raised=, at;else= of} {anchor_at:time}.",
     "evidence.twice": "{quantity:name} {first:q} ({first_at:time}) and {second:q} ({second_at:time}), "
         "both at or below {high:q}.",
