@@ -106,6 +106,10 @@ def taken_back_words(entries: Sequence[NewEntry], now: Instant, reader: Reader) 
         return translate("strip", "the withdrawal of {what}").format(what=undone_words(entries))
     if action in (Action.FLAG, Action.DUE):
         return translate("strip", "the word '{what}'").format(what=entries[0].words or "")
+    if action in (Action.MASK, Action.SHIFT):  # their numbers are times and no value of the channel
+        meant = {Action.MASK: translate("strip", "that device samples do not count ({what})"),
+                 Action.SHIFT: translate("strip", "that device samples belong to another time ({what})")}  # fmt: skip
+        return meant[action].format(what=undone_words(entries))
     text = {Action.CORRECT: translate("strip", "the correction to {what}"),
             Action.MOVE: translate("strip", "the move to this patient of {what}")}.get(action, "{what}")  # fmt: skip
     return text.format(what=recorded_words(entries, now, reader))

@@ -87,7 +87,11 @@ def test_a_wrong_clock_is_put_right_and_ctrl_z_takes_it_back(qtbot, path):
         dialog.reject()
         first = NOW - 4 * HOUR
         until(qtbot, lambda: int(window.feed.answers["bed-7"].record.number("leak").t[0]) == first)
-        window.actions_by_key["undo"].trigger()
+        undo = window.actions_by_key["undo"]
+        undo.trigger()
+        assert "that device samples belong to another time (Leak, Tidal volume, expired)?" in window.strip.plain()
+        until(qtbot, lambda: window.strip.settle.is_over)
+        undo.trigger()
         until(qtbot, lambda: int(window.feed.answers["bed-7"].record.number("leak").t[0]) == first + HOUR)
 
 
