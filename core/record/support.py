@@ -167,10 +167,10 @@ def resumptions_of(episode: Episode, settings: SettingsInForce) -> Iterator[Mome
 
 
 def _mode_moves(episode: Episode) -> list[tuple[Moment, bool]]:
-    """Switching off is going off; only a mode after `off` is coming on (one logged in a break is a plan)."""
+    """Off is going off, also said again; only a mode after `off` is coming on (one logged in a break is a plan)."""
     moments, modes = moments_of(episode, "mode"), episode.text("mode").v
     return [(m, v == "off") for m, v, was in zip(moments, modes, (None, *modes), strict=False)
-            if (v == "off") != (was == "off")]  # fmt: skip
+            if v == "off" or was == "off"]  # fmt: skip
 
 
 def _moves(episode: Episode) -> list[tuple[Moment, bool]]:

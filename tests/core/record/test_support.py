@@ -66,6 +66,13 @@ def test_breaks_pair_and_hours_leave_them_out():
     assert s.on_support(moment("02:30"))
 
 
+def test_switched_off_again_after_the_mask_went_on_is_off():
+    s = found(START + "02:00 mode off\n02:30 mask on\n03:00 mode off\n03:20 mode bpap-st")
+    assert [(b.start, b.end) for b in s.breaks] == [
+        (moment("02:00"), moment("02:30")), (moment("03:00"), moment("03:20"))
+    ]  # fmt: skip
+
+
 def test_off_while_off_changes_nothing():
     s = found(START + "02:00 break start\n02:05 mask off\n02:30 mask on\n02:40 break end")
     assert [(b.start, b.end) for b in s.breaks] == [(moment("02:00"), moment("02:30"))]
