@@ -82,6 +82,11 @@ class SeeFirst(QFrame):
             self._why.setText(inert(self.tr("No open flag and nothing overdue. This is no proof that all is well.")))
         self.setAccessibleName(self.text())
 
+    @property
+    def names_somebody(self) -> bool:
+        """Whether somebody stands out."""
+        return bool(self._key)
+
     def text(self) -> str:
         """The line in plain words."""
         from PySide6.QtGui import QTextDocumentFragment

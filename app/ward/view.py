@@ -21,7 +21,7 @@ from app.session.readers import reader_at
 from app.session.shift import Shift
 from app.ward.lane_words import LaneWords, OnWard, strongest_flag
 from app.ward.legend import Legend
-from app.ward.moves import told_apart
+from app.ward.moves import told_apart, what_tells_apart
 from app.ward.ordering import Order, Shown, first_to_see, ordered, shown
 from app.ward.search_field import SearchField
 from app.ward.see_first import SeeFirst
@@ -133,9 +133,15 @@ class WardView(QWidget):
         roomy = self.height() >= self._theme.px(ROOMY)
         self.tools.setVisible(roomy)
         self.status.setVisible(roomy)
-        self.first.setVisible(self.height() >= self._theme.px(LEAST))  # its lane stands on top and says so too
+        tall = self.height() >= self._theme.px(LEAST)
+        self.first.setVisible(tall or not self._first_is_on_top())  # there its lane says so too
         if self._legend is not None:
             self._legend.setVisible(roomy)
+
+    def _first_is_on_top(self) -> bool:
+        """Whether the lane of whom to see first is the first one: another order or a filter puts it out of sight."""
+        lanes = () if self.lanes.spec is None else self.lanes.spec.lanes
+        return self._content is None or (bool(lanes) and bool(lanes[0].first_word)) or not self.first.names_somebody
 
     # what to show
 
@@ -194,9 +200,9 @@ class WardView(QWidget):
         ward = [e.figures for e in content.episodes]
         top = first_to_see(ward)
         words = LaneWords(reader_at(content.zone, content.gas_unit, content.as_of), content.as_of)
-        labels = [f.label for f in ward]
+        apart = what_tells_apart(ward, content.as_of, content.zone)
         lanes = [
-            self._marked(words.lane(self._by_key[f.episode], first=top is f, ambiguous=labels.count(f.label) > 1))
+            self._marked(words.lane(self._by_key[f.episode], first=top is f, apart=apart.get(f.episode, "")))
             for f in ordered(shown(ward, self._shown, self.search.text(), self._former()), self._order)
         ]
         self._tell_first(words)
@@ -219,6 +225,7 @@ class WardView(QWidget):
             self.select(self._in_hand)
         self.lanes.setAccessibleDescription("\n".join(x.sentence for x in lanes) or self._empty_word())
         self.status.say(self.lanes.sentence_of_selection() or self._elsewhere())
+        self._make_room()
 
     def _elsewhere(self) -> str:
         """That the episode in hand is not on the screen: whoever types must not think of another."""
@@ -261,8 +268,8 @@ class WardView(QWidget):
             return
         flag = strongest_flag(top)
         why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)
-        shared = sum(e.figures.label == top.label for e in self._content.episodes) > 1
-        label = told_apart(top, self._content.as_of, self._content.zone) if shared else top.label
+        ward = [e.figures for e in self._content.episodes]
+        label = told_apart(top, ward, self._content.as_of, self._content.zone)
         self.first.show_first(top.episode, label, why, Tier(flag.tier) if flag is not None else None)
 
     def _tell_shift(self, content: WardContent, shown_now: int) -> None:

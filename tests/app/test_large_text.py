@@ -5,6 +5,7 @@ from PySide6.QtWidgets import QAbstractButton, QLabel, QWidget
 
 from app.keeping.preferences import Preferences
 from app.look.flow_row import FlowRow
+from app.ward.ordering import Order
 from tests.support.open_window import make_store, open_window, settled
 
 
@@ -157,3 +158,23 @@ def test_the_map_and_its_words_share_the_page(qtbot, tmp_path, scale):
         assert inside.width() <= view.roll.viewport().width()
         assert view.map.height() >= window.theme.px(280)
         assert view._side.width() >= 0.3 * view.width()
+
+
+def test_whom_to_see_first_is_named_wherever_another_order_or_a_filter_hides_the_lane(qtbot, tmp_path):
+    preferences = Preferences(text_scale=2.0, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(1280, 800)
+        settled(qtbot, window)
+        ward = window.pages.ward
+        assert ward.shown_keys()[0] == "bed-7"
+        assert not ward.first.isVisible()  # its lane stands on top and says so
+        ward.sort_by(Order.BED)
+        assert ward.shown_keys()[0] == "bed-3"
+        assert ward.first.isVisible()
+        assert "Bed 7" in ward.first.text()
+        ward.sort_by(Order.CONCERN)
+        ward.search.setText("Bed 3")
+        assert ward.shown_keys() == ("bed-3",)
+        assert ward.first.isVisible()
+        ward.search.setText("")
+        assert not ward.first.isVisible()
