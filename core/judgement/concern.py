@@ -13,6 +13,7 @@ from collections.abc import Iterable
 from core.judgement.context import Context
 from core.judgement.flags import open_flags, strength
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
+from core.judgement.markers.registry import ABSOLUTE
 from core.judgement.shapes import Concern, DueFigure, FlagFigure, GasFigure
 from core.record.instant import HOUR, Instant
 from core.record.message import Message, Value
@@ -35,7 +36,7 @@ def concern(ctx: Context, flags: Iterable[FlagFigure], due: Iterable[DueFigure])
     flags, due = tuple(flags), tuple(due)
     end = ctx.support.end
     if end is not None and end <= ctx.as_of:
-        return Concern(ENDED, 0.0, Message("concern.ended", {"ended_at": end, "by": ctx.support.ended_by}))
+        return _ended(ctx, flags, end)
     rank, why, since = _ranked(ctx, flags, due)
     floor = _STATE_RANK.get(_state(ctx) or "", QUIET)
     if floor < rank:
@@ -43,6 +44,15 @@ def concern(ctx: Context, flags: Iterable[FlagFigure], due: Iterable[DueFigure])
     if ctx.comfort_care:
         rank = max(rank, COMFORT_FROM)
     return Concern(rank, _order(ctx, flags, since), why)
+
+
+def _ended(ctx: Context, flags: tuple[FlagFigure, ...], end: Instant) -> Concern:
+    """An ended episode stands last, unless something after the end raised a flag that is still open."""
+    since = [f for f in open_flags(flags) if f.marker in ABSOLUTE]
+    if not since or ctx.comfort_care:
+        return Concern(ENDED, 0.0, Message("concern.ended", {"ended_at": end, "by": ctx.support.ended_by}))
+    rank, why, began = _ranked(ctx, tuple(since), ())
+    return Concern(rank, _order(ctx, tuple(since), began), why)
 
 
 def _ranked(

@@ -14,7 +14,7 @@ from core.judgement.flag_history import History, history_of, transitions, word_o
 from core.judgement.markers.gas_points import not_settled
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
-from core.judgement.markers.registry import MARKERS, ORDER, Marker
+from core.judgement.markers.registry import ABSOLUTE, MARKERS, ORDER, Marker
 from core.judgement.markers.spells import Spell, united, without_flicker
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.shapes import FlagFigure
@@ -24,6 +24,8 @@ from core.record.message import Message
 __all__ = ["evaluate", "flag_id", "open_flags", "transitions", "word_on"]
 
 TIERS = ("escalate", "concern", "remark")
+STILL_WATCHED = frozenset({"stopped", "ended_at"})
+"""Ends after which a patient breathes without support, so that a gas logged then counts. Not intubation or arrest."""
 RAISED, SEEN, SETTLED, NO_LONGER = "raised", "seen", "settled", "no longer met"
 
 
@@ -60,7 +62,19 @@ def spells_of(seen: Observed, marker: Marker, rule: MarkerRule) -> list[Spell]:
     end = seen.support.end
     if end is None or end > seen.as_of or marker.after_end:
         return spells
+    if marker.key not in ABSOLUTE or seen.support.ended_by not in STILL_WATCHED:
+        return _until(end, spells)
+    after = [s for s in spells if newest_of(s.evidence) >= end]
+    return sorted([*_until(end, (s for s in spells if s not in after)), *after], key=lambda s: s.since)
+
+
+def _until(end: Instant, spells: Iterable[Spell]) -> list[Spell]:
     return [replace(s, until=end if s.until is None else min(s.until, end)) for s in spells if s.since < end]
+
+
+def newest_of(evidence: Iterable[Message]) -> Instant:
+    """When the newest value that a flag rests on was; 0 where none says."""
+    return max((int(m.values.get(k) or 0) for m in evidence for k in ("at", "second_at")), default=0)
 
 
 def flag_id(marker: str, since: Instant) -> str:
@@ -112,7 +126,7 @@ def _beside(met: _Met, seen: Observed) -> tuple[Message, ...]:
     said: list[Message] = []
     if spell.outside_population:
         said.append(Message("evidence.outside_population", {"population": rule.population}))
-    newest = max((int(m.values.get(k) or 0) for m in spell.evidence for k in ("at", "second_at")), default=0)
+    newest = newest_of(spell.evidence)
     unsettled = not_settled(seen, met.marker.key, spell.evidence) if spell.until is None else None
     said += [unsettled] if unsettled is not None else []
     if spell.until is None and 0 < newest < ctx.as_of - rule.stale_min * MINUTE:

@@ -131,6 +131,12 @@ _ALL = (
 MARKERS: Final[Mapping[str, Marker]] = MappingProxyType({m.key: m for m in _ALL})
 """In order of strength: of two flags of one group and tier, the earlier one here is the stronger."""
 
+ABSOLUTE: Final = frozenset(
+    {"ph_below_severe", "venous_ph_below_severe", "acidosis_off_support", "pao2_below_60", "pao2_below_45",
+     "pao2_below_45_on_highest_oxygen", "gcs_below_8", "gcs_below_11"}
+)  # fmt: skip
+"""Markers of one value by itself (rules of judgement 6.1): they fire on what comes after support was stopped, too."""
+
 ORDER: Final[Mapping[str, int]] = MappingProxyType({m.key: i for i, m in enumerate(_ALL)})
 
 

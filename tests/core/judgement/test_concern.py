@@ -30,6 +30,10 @@ def ranked(log, as_of):
         (WELL + "01:20 rr 24", "02:50", 4, "concern.due_soon"),
         (BASE, "02:10", 2, "concern.overdue"),  # nobody has looked since the start
         (BASE + "02:00 stopped", "03:00", 6, "concern.ended"),
+        (BASE + "02:00 ph 7.24 paco2 76\n02:05 stopped", "03:00", 6, "concern.ended"),  # it was so before the end
+        (BASE + "02:00 stopped\n02:30 ph 7.24 paco2 76", "03:00", 1, "concern.flag"),
+        (BASE + "02:00 stopped\n02:30 ph 7.24 paco2 76\n02:50 ph 7.36 paco2 52", "03:00", 6, "concern.ended"),
+        (BASE + "02:00 intubated\n02:30 ph 7.24 paco2 76", "03:00", 6, "concern.ended"),
         (BASE + "02:00 rr 22\n02:00 ph 7.36 paco2 52 pao2 58 site arterial", "02:10", 3, "concern.flag"),
     ],
 )

@@ -79,6 +79,25 @@ def test_an_ended_flag_stays_with_its_end():
     assert (ended.state, ended.ended_at) == ("no longer met", at("04:00"))
 
 
+def test_what_comes_after_support_was_stopped_is_flagged_by_itself():
+    found = flags(SEVERE + "02:20 stopped\n03:00 ph 7.05 paco2 90\n03:10 gcs 7")
+    still = {f.marker for f in found if f.ended_at is None}
+    assert still == {"ph_below_severe", "acidosis_off_support", "gcs_below_8", "gcs_below_11"}
+    assert one(found, "ph_not_better_severe").ended_at == at("02:20")
+    severe = one(found, "ph_below_severe")  # one flag: it goes on by the newer gas
+    assert (severe.since, severe.evidence[0].values["at"]) == (at("02:00"), at("03:00"))
+
+
+def test_a_gas_of_the_minute_in_which_support_was_stopped_is_flagged():
+    found = flags(BASE + "02:00 ph 7.10 paco2 90\n02:00 stopped")
+    assert one(found, "ph_below_severe").ended_at is None
+
+
+def test_what_comes_after_intubation_is_judged_elsewhere():
+    found = flags(BASE + "02:20 intubated\n03:00 ph 7.05 paco2 90")
+    assert [f.marker for f in found if f.ended_at is None] == []
+
+
 def test_a_flag_is_raised_once_whoever_looks():
     made = appended(entries(SEVERE), "02:10")
     again = appended(made, "02:20")
