@@ -38,6 +38,10 @@ class Shown(StrEnum):
     DUE = "due soon"
 
 
+_CONCERN = 1
+"""The rank up to which an episode is one of concern."""
+
+
 def is_ended(figures: EpisodeFigures) -> bool:
     """Whether support has ended."""
     return figures.support.ended_at is not None
@@ -97,7 +101,9 @@ def shown(
 def _passes(f: EpisodeFigures, which: Shown) -> bool:
     if which is Shown.NOT_RESPONDING:
         strong = any(g.state in _OPEN_FLAG and g.tier in ("escalate", "concern") for g in f.flags)
-        return not is_ended(f) and (strong or _responds_poorly(f))
+        if is_ended(f):  # a relapse after support was stopped
+            return strong and f.concern.rank <= _CONCERN
+        return strong or _responds_poorly(f)
     if which is Shown.DUE:
         return any(d.state in _URGENT for d in f.due)
     return True

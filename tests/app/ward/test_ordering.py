@@ -10,6 +10,7 @@ from core.judgement.shapes import Concern, DueFigure, EpisodeFigures, SupportFig
 from core.record.instant import HOUR
 from core.record.message import Message
 from tests.support.invented_ward import at, ward
+from tests.support.log import episode, moment
 from tests.support.night_check import END, night
 from tests.support.sample_ward import sample_ward
 
@@ -52,6 +53,16 @@ def test_filters():
     assert labels(shown(FIGURES, Shown.ALL, "bay c")) == ["Bed 12"]
     assert labels(shown(FIGURES, Shown.ALL, "copd 7")) == ["Bed 7"]
     assert shown(FIGURES, Shown.ALL, "nobody") == ()
+
+
+def test_a_relapse_after_support_was_stopped_stands_with_the_sick():
+    log = "01:00 mode bpap-st ipap 16 epap 5\n02:00 ph 7.36 paco2 50\n03:00 stopped\n"
+    now, policy = moment("04:00"), shipped_policy()
+    quiet = replace(episode_figures(episode(log), now, policy), label="Bed 1")
+    again = replace(episode_figures(episode(log + "03:50 ph 7.24 paco2 70"), now, policy), label="Bed 2")
+    assert labels(ordered((quiet, again), Order.CONCERN)) == ["Bed 2", "Bed 1"]
+    assert labels(shown((quiet, again), Shown.NOT_RESPONDING)) == ["Bed 2"]
+    assert first_to_see((quiet, again)) == again
 
 
 def test_a_relapse_is_not_responding_though_no_flag_is_open():
