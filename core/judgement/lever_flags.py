@@ -42,7 +42,7 @@ ACTS_ON: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType({
     "ph_not_better": _CO2,
     "ph_not_better_settling": _CO2,
     "ph_not_better_severe": _CO2,
-    "too_little_support": _CO2,
+    "too_little_support": ("pressure_support",),
     "venous_ph_below_severe": _CO2,
     "fio2_need_rising": _OXYGEN,
     "hacor_8_or_more": _OXYGEN,

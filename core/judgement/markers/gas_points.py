@@ -51,9 +51,13 @@ def compared_doubts(seen: Observed, gas: GasFigure) -> tuple[Message, ...]:
 
     A relapse in an early gas is told all the same (rules of judgement 1.1 and 1.5): it must not wait for the window.
     """
-    early = any(a.judged.timing == "early" for a in seen.attributed.get(gas.at, ()))
-    told = (Message("evidence.gas_doubt", {"doubt": "early", "at": gas.at}),) if early else ()
+    told = (Message("evidence.gas_doubt", {"doubt": "early", "at": gas.at}),) if is_early(seen, gas) else ()
     return (*told, *gas_doubts(gas))
+
+
+def is_early(seen: Observed, gas: GasFigure) -> bool:
+    """Whether a gas was drawn before the response window of the change that it judges."""
+    return any(a.judged.timing == "early" for a in seen.attributed.get(gas.at, ()))
 
 
 def lacking(gas: GasFigure, needs: Iterable[str]) -> tuple[str, ...]:

@@ -12,7 +12,7 @@ from functools import partial
 from math import isnan
 
 from core.judgement.markers import evidence as say
-from core.judgement.markers.gas_points import compared_doubts, from_gases
+from core.judgement.markers.gas_points import compared_doubts, from_gases, is_early
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.population import inside
 from core.judgement.markers.spells import Point, Spell
@@ -85,7 +85,7 @@ def _judged(seen: Observed) -> list[Judgement]:
 
     A gas outside the hours that judge does not begin anything; it ends what began when pH reached 7.35, has risen
     beyond noise since the baseline of that beginning, or is better than at the start without having fallen back
-    since (`_better_since_start`).
+    since (`_better_since_start`). An early gas ends it by a pH of 7.35 alone: the rest is not steady yet.
     """
     rules = seen.policy.response
     low, high = rules.one_to_two_hours_from_min.value, rules.one_to_two_hours_to_min.value
@@ -98,7 +98,7 @@ def _judged(seen: Observed) -> list[Judgement]:
         timely = [c for c in comparisons(seen, gas) if low <= c.minutes <= high]
         poor = next((c for c in timely if not_gained(seen, c)), None) if acidotic else None
         over = not acidotic
-        if poor is None and standing is not None and standing.base.ph is not None:
+        if poor is None and standing is not None and standing.base.ph is not None and not is_early(seen, gas):
             over = over or direction(gas.ph - standing.base.ph, ph_noise(seen.policy.noise)) == 1
             over = over or any(not not_gained(seen, c) for c in timely) or _better_since_start(seen, gas, standing)
         standing = poor if poor is not None else None if over else standing

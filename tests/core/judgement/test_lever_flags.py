@@ -33,7 +33,9 @@ OF_GROUP = {
     "breathing": {"secretions", "pressure_support"},
     "mask": {"mask"},
 }
-OTHERWISE = {"skin_check_overdue", "gas_overdue", "vt_high_hypoxaemic", "backup_takeover", "news2_rise"}
+OTHERWISE = frozenset({
+    "too_little_support", "skin_check_overdue", "gas_overdue", "vt_high_hypoxaemic", "backup_takeover", "news2_rise",
+})  # fmt: skip
 """Markers whose group says less than they do."""
 SEEDS = (3,)
 

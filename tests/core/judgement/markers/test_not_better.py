@@ -262,3 +262,10 @@ def test_a_flag_that_stands_for_hours_says_when_it_was_judged():
     flag = next(f for f in flags(log, "06:30") if f.marker == "ph_not_better")
     words = " ".join(sentence(m) for m in flag.evidence)
     assert "Judged 1 h 10 min after the start of 27-Mar-2026 01:00." in words
+
+
+def test_an_early_gas_ends_not_better_by_a_normal_ph_alone():
+    log = COPD + "00:30 ph 7.24 paco2 83\n" + START + "02:10 ph 7.26 paco2 77\n02:40 ipap 22\n"
+    assert met("ph_not_better", log + "02:57 ph 7.30 paco2 68\n", "03:00") == "02:10-"
+    assert met("ph_not_better", log + "02:57 ph 7.36 paco2 56\n", "03:00") == "02:10-02:57"
+    assert met("ph_not_better", log + "03:10 ph 7.30 paco2 68\n", "03:20") == "02:10-03:10"
