@@ -54,8 +54,8 @@ TRENDS: Final = (
         "Out of sight until asked for; four points cannot reach p 0.05.",
     ),
     _line(
-        "device_median", "15-min median of a device channel", "", "median of a quarter of an hour, the newest of the last 15 min",
-        "breath noise averages out", "common practice",
+        "device_median", "15-min median of a device channel", "",
+        "median of a quarter of an hour, the newest of the last 15 min", "breath noise averages out", "common practice",
         "core.judgement.device_medians.medians", _TREND + "test_medians_take_the_middle_and_ignore_silence",
     ),
     _line(
