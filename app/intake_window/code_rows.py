@@ -10,6 +10,7 @@ from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
 
 from app.intake_window.column_table import NoWheel, fill_channels
 from app.look import formats
+from app.look.emptied import emptied
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
 from storage.codes import LOINC
@@ -47,12 +48,7 @@ class CodeRows(QWidget):
 
     def show_unknown(self, codes: Sequence[UnknownCode]) -> None:
         """Ask for codes; none hides the rows."""
-        while self._grid.count():
-            item = self._grid.takeAt(0)
-            widget = item.widget() if item is not None else None
-            if widget is not None:
-                widget.hide()
-                widget.deleteLater()
+        emptied(self._grid)
         self.boxes = {}
         self.setVisible(bool(codes))
         if not codes:

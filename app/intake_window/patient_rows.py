@@ -8,6 +8,7 @@ from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
 
 from app.intake_window.episode_choices import choices, chosen_or_typed
+from app.look.emptied import emptied
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
 
@@ -32,12 +33,7 @@ class PatientRows(QWidget):
 
     def show_unknown(self, identifiers: Sequence[str], episodes: Mapping[str, str]) -> None:
         """Ask for identifiers; none hides the rows. Nothing is chosen beforehand."""
-        while self._grid.count():
-            item = self._grid.takeAt(0)
-            widget = item.widget() if item is not None else None
-            if widget is not None:
-                widget.hide()
-                widget.deleteLater()
+        emptied(self._grid)
         self.boxes, self.buttons = {}, {}
         for row, text in enumerate(identifiers[:MOST]):
             self._add(row, text, episodes)
