@@ -55,7 +55,8 @@ def wall_iso(at: int, zone: str) -> str:
 def described(shown: operations.Preview, reader: Reader) -> str:
     """What a line records, with units, and pressure support before and after."""
     parts = [reading_text(r, reader) for r in shown.line.readings]
-    text = f"{shown.label}, {wall(shown.line.at, reader.zone)}: " + ", ".join(parts) + "."
+    whom = shown.label if shown.label == shown.episode else f"{shown.label} ({shown.episode})"
+    text = f"{whom}, {wall(shown.line.at, reader.zone)}: " + ", ".join(parts) + "."
     before, after = shown.line.support_before, shown.line.support_after
     if before != after and not isnan(after):
         was = "" if isnan(before) else f" (was {trimmed(before)})"

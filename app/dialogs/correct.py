@@ -97,9 +97,9 @@ class CorrectDialog(DraftedDialog):
         for key, label in others.items():
             self.to.addItem(label, key)
         self.of.addItem("", Of.WHOLE)
-        self.of.addItem(self.tr("only this value"), Of.ONE)
+        self.of.addItem(self.tr("this value alone"), Of.ONE)
         self.field(self.tr("What to do"), self.act)
-        self.field(self.tr("How much of the gas"), self.of)
+        self.field(self.tr("Of this gas"), self.of)
         self.field(self.tr("Right value, with unit"), self.value)
         self.field(self.tr("Right time"), self.time)
         self.to.setPlaceholderText(self.tr("Choose the right patient"))
@@ -134,11 +134,7 @@ class CorrectDialog(DraftedDialog):
         together = gas_with(found.id, self._record.standing)
         names = ", ".join(channel_name(e.channel) for e in together)
         is_time = self.act.currentData() == Act.CORRECT
-        text = (
-            self.tr("another time is that of the whole gas: {names}")
-            if is_time
-            else self.tr("the whole gas: {names}")
-        )
+        text = self.tr("a new time for all of it: {names}") if is_time else self.tr("all of it: {names}")
         self.of.setItemText(0, text.format(names=names))
         self.form.setRowVisible(self.of, len(together) > 1)
 

@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from app.operations.episode_shelf import shelf_of
+from core.record.labels import alike
 from core.record.message import Message
 from core.record.reading import Reading
 
@@ -15,21 +16,12 @@ if TYPE_CHECKING:
 
 def label_questions(store: Store, key: str, readings: Sequence[Reading]) -> tuple[Message, ...]:
     """A question for each open episode that bears a label given here, compared without case and extra blanks."""
-    given = {_alike(r.words) for r in readings if r.channel.key == "label" and r.words}
+    given = {alike(r.words) for r in readings if r.channel.key == "label" and r.words}
     if not given:
         return ()
     shelf = shelf_of(store)
     others = (shelf.get_if_sound(store, k) for k in store.open_episode_keys() if k != key)
-    taken = [o for o in others if o is not None and o.standing and _alike(o.label) in given]
+    taken = [o for o in others if o is not None and o.standing and alike(o.label) in given]
     return tuple(
         Message("doubt.label_in_use", {"label": o.label, "episode": o.key, "since": o.first_at}) for o in taken
     )
-
-
-def _alike(label: str) -> str:
-    """A label as people compare it.
-
-    >>> _alike("  Bed  4 ")
-    'bed 4'
-    """
-    return " ".join(label.split()).casefold()

@@ -15,14 +15,24 @@ from app.sheet.episode_content import EpisodeWriter
 from app.sheet.shapes import SheetContent
 from app.sheet.ward_content import WardWriter
 from app.telling.language import in_language as tr
+from app.ward.moves import told_apart
 from app.words import Reader
 from core.record.instant import HOUR
+
+
+def _told_apart(handover: Handover, zone: str) -> Handover:
+    """The handover with labels that two episodes share told apart, wherever they are printed."""
+    shift = handover.shift
+    ward = [s.now for s in shift.episodes]
+    named = [replace(s, now=replace(s.now, label=told_apart(s.now, ward, shift.end, zone))) for s in shift.episodes]
+    return replace(handover, shift=replace(shift, episodes=tuple(named)))
 
 
 def sheet_content(
     handover: Handover, reader: Reader, *, given_by: str = "", taken_by: str = "", title: str = ""
 ) -> SheetContent:
     """Everything a handover says, for one reader. With both names it is one to close: its time is printed too."""
+    handover = _told_apart(handover, reader.zone)
     shift = handover.shift
     reader = replace(reader, near=(shift.start - 2 * HOUR, handover.end + 10 * HOUR))
     prepared = formats.wall(handover.prepared_at, reader.zone)

@@ -79,8 +79,8 @@ class LaneWords:
         """The unit of gas pressures."""
         return self.reader.gas_unit
 
-    def lane(self, on_ward: OnWard, *, first: bool, ambiguous: bool = False) -> Lane:
-        """The lane of an episode. `ambiguous`: another episode carries the same label, so tell them apart."""
+    def lane(self, on_ward: OnWard, *, first: bool, apart: str = "") -> Lane:
+        """The lane of an episode. `apart`: what tells it from others that carry the same label."""
         f, course = on_ward.figures, on_ward.course
         ended = is_ended(f)
         told = headline(f)
@@ -90,7 +90,7 @@ class LaneWords:
         return Lane(
             key=f.episode,
             title=f.label,
-            subtitle=self._subtitle(f, ambiguous, moved_word(on_ward.moves, self.zone)),
+            subtitle=self._subtitle(f, apart, moved_word(on_ward.moves, self.zone)),
             support=tuple(self._pieces(course)),
             items=tuple(sorted((*self._items(f, course), *self._moves(on_ward.moves)), key=lambda i: i.at)),
             state=state_of(gas.state) if gas is not None else None,
@@ -112,14 +112,9 @@ class LaneWords:
 
     # words of the whole lane
 
-    def _subtitle(self, f: EpisodeFigures, ambiguous: bool, moved: str) -> str:
+    def _subtitle(self, f: EpisodeFigures, apart: str, moved: str) -> str:
         s = f.support
-        told = self._indication(f)
-        if ambiguous and s.since is not None:
-            from_then = translate("ward", "{indication}, from {time}")
-            told = from_then.format(indication=told, time=self.reader.time(s.since))
-        elif ambiguous:
-            told = f"{told}, {f.episode}"
+        told = f"{self._indication(f)}, {apart}" if apart else self._indication(f)
         if off_mask_word(f, self.zone):
             return translate("ward", "{indication}, mask off").format(indication=told)
         if s.silent_since is not None:  # first, so that a narrow place does not cut it off

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
@@ -12,6 +13,7 @@ from PySide6.QtCore import QCoreApplication
 from app.look.formats import clock, wall
 from core.record.episode import Episode
 from core.record.instant import DAY, Instant
+from core.record.labels import alike
 
 if TYPE_CHECKING:
     from app.operations.figures import EpisodeAnswer
@@ -50,20 +52,37 @@ def move_sentence(move: Move, zone: str) -> str:
 
 
 def label_told_apart(answers: Mapping[str, EpisodeAnswer], key: str, now: Instant, zone: str) -> str:
-    """What an episode is called where lines are logged: its label, and since when where another shares it."""
-    figures = answers[key].figures
-    if not any(a.figures.label == figures.label for k, a in answers.items() if k != key):
-        return figures.label
-    return told_apart(figures, now, zone)
+    """What an episode is called where lines are logged: its label, and what tells it from another that shares it."""
+    return told_apart(answers[key].figures, [a.figures for a in answers.values()], now, zone)
 
 
-def told_apart(figures: EpisodeFigures, now: Instant, zone: str) -> str:
-    """The label of an episode that shares it with another, and since when it runs."""
+def told_apart(figures: EpisodeFigures, ward: Sequence[EpisodeFigures], now: Instant, zone: str) -> str:
+    """The label of an episode, and where others of the ward share it, what tells it from them."""
+    apart = what_tells_apart(ward, now, zone).get(figures.episode)
+    return figures.label if apart is None else f"{figures.label} ({apart})"
+
+
+def what_tells_apart(ward: Sequence[EpisodeFigures], now: Instant, zone: str) -> dict[str, str]:
+    """By episode that shares its label: since when it runs, its key where that is not recorded, and both where others
+    of the label run since then as well."""
+    labels = Counter(alike(f.label) for f in ward)
+    shared = [f for f in ward if labels[alike(f.label)] > 1]
+    since = {f.episode: _since_word(f, now, zone) for f in shared}
+    times = Counter((alike(f.label), since[f.episode]) for f in shared)
+    found = {}
+    for f in shared:
+        told = since[f.episode]
+        alone = told and times[alike(f.label), told] == 1
+        found[f.episode] = told if alone else f"{told}, {f.episode}" if told else f.episode
+    return found
+
+
+def _since_word(figures: EpisodeFigures, now: Instant, zone: str) -> str:
     since = figures.support.since
     if since is None:
-        return f"{figures.label} ({figures.episode})"
+        return ""
     told = clock(since, zone) if now - since < DAY else wall(since, zone)
-    return translate("ward", "{label} (from {time})").format(label=figures.label, time=told)
+    return translate("ward", "from {time}").format(time=told)
 
 
 def moved_word(moves: Sequence[Move], zone: str) -> str:

@@ -137,6 +137,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "row.device_entry": "'{value}' is no action for device samples. Accepted: {accepted}.",
     "row.quotes": "A quotation mark is not closed, or stands in a wrong place ({detail}).",
     "row.repeated": "The row stands in the file already, on line {first_line}. Accepted: {accepted}.",
+    "row.label_shared":
+        "'{label}' is the label of episode {episode} too, which has not ended: one patient under two keys, or two in "
+        "one bed?",
     "row.two_values": "{channel:name} has another value at the same moment on line {first_line}: {first:of}. "
         "The later row counts.",
     "row.unknown_action": "'{value}' is no action. Accepted: {accepted}.",

@@ -17,6 +17,7 @@ from storage.intake.gas_rows import gas_row_doubts
 from storage.intake.pressures import Contradiction, contradictions
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import LeakUse
+from storage.intake.shared_labels import shared_labels
 from storage.rules import WITHDRAWN_WHOLE, Lookup, Replaced, problem
 from storage.store import Store
 
@@ -82,6 +83,7 @@ class EntryRows:
         rows = self._with_doubts(rows)
         self._find_two_values(rows)
         rows = self._with_second_values(rows)
+        self._find_shared_labels(rows)
         return tuple(r.draft for r in rows)
 
     def _held_entries(self, episode: str) -> tuple[Entry, ...]:
@@ -234,6 +236,13 @@ class EntryRows:
                     "first": first.draft.entry.number,
                 }
                 self._findings.doubt(row.line, "value", _shown(row), Message("row.two_values", values))
+
+    def _find_shared_labels(self, rows: list[EntryRow]) -> None:
+        """Two open episodes under one label: the same patient under two keys, or two patients in one bed?"""
+        of = _by_episode(rows)
+        entries = [r.draft.entry for r in rows]
+        for i, message in shared_labels(entries, lambda key: self.combined(key, of[key]), self._existing):
+            self._findings.doubt(rows[i].line, "value", _shown(rows[i]), message)
 
     def _with_second_values(self, rows: list[EntryRow]) -> list[EntryRow]:
         """A row that gives another value than the store has for that very moment is taken and marked: nobody is there

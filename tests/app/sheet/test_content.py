@@ -328,3 +328,15 @@ def test_the_next_shift_reads_who_was_called_before_it_about_a_flag_that_stands(
     assert row.action.endswith("Told: 04:37 (before this shift) medical registrar. Answer: busy, will come.")
     page = next(p for p in content.episodes if p.label == "Bed 4")
     assert page.told == ("04:37 (before this shift) medical registrar. Answer: busy, will come",)
+
+
+def test_two_beds_of_one_label_are_told_apart_wherever_they_stand(night: Handover) -> None:
+    first, second, *rest = night.shift.episodes
+    twin = replace(second, now=replace(second.now, label=first.now.label, support=first.now.support))
+    both = replace(night, shift=replace(night.shift, episodes=(first, twin, *rest)))
+    made = sheet_content(both, Reader(demo.ZONE))
+    labels = [r.label for r in made.ward.rows[:2]]
+    assert labels == [p.label for p in made.episodes[:2]]
+    assert labels[0].endswith(f", {first.episode})")
+    assert labels[1].endswith(f", {twin.episode})")
+    assert not any("(" in r.label for r in made.ward.rows[2:])

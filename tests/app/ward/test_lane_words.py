@@ -133,7 +133,7 @@ def test_an_ended_lane_is_closed_and_owes_nothing():
 
 
 def test_two_with_one_label_are_told_apart():
-    assert "from 22:45" in lane_of(leaking(2), ambiguous=True).subtitle
+    assert "from 22:45, E1" in lane_of(leaking(2), apart="from 22:45, E1").subtitle
 
 
 def test_an_episode_with_nothing_but_a_label_still_has_a_lane():

@@ -231,9 +231,24 @@ def test_two_values_of_one_moment_are_said(read: Reader) -> None:
     ]
 
 
+def test_an_open_episode_of_the_same_label_is_said(read: Reader, store: Store) -> None:
+    def shared(*rows: str, existing: Store | None = None) -> list[tuple[int, str | float | None]]:
+        told = read(*rows, existing=existing).doubts
+        return [(d.line, d.message.values["episode"]) for d in told if d.message.key == "row.label_shared"]
+
+    one, other = f"E1,{AT},label,Bed 3,,AB,", f"E2,{AT},label, bed  3,,AB,"
+    assert shared(one, other, f"E3,{AT},label,Bed 4,,AB,") == [(3, "E1")]
+    assert shared(one, f"E1,{AT},stopped,,,AB,", other) == []  # the first has left the bed
+    take_in(store, read(one), by="AB", now=NOW)
+    assert shared(other, existing=store) == [(2, "E1")]
+    assert shared(f"E1,{AT},label,Bed 3,,CD,", existing=store) == []
+    take_in(store, read(f"E1,{AT},stopped,,,AB,"), by="AB", now=NOW)
+    assert shared(other, existing=store) == []
+
+
 def test_another_value_than_the_store_has_for_the_moment_is_taken_and_marked(read: Reader, store: Store) -> None:
     first = read(f"E1,{AT},ph,7.30,,AB,", f"E1,{AT},rr,20,/min,AB,", f"E1,{AT},mode,CPAP,,AB,")
-    store.append([d.entry for d in first.entries], by="AB", operation="intake", now=NOW)
+    store.append([d.entry for d in first.entries], by="AB", now=NOW)
     again = read(
         f"E1,{AT},ph,7.24,,CD,", f"E1,{AT},rr,20,/min,CD,", f"E1,{AT},mode,BPAP-S,,CD,", f"E1,{AT},hr,90,,CD,",
         f"E2,{AT},ph,7.24,,CD,", existing=store,
