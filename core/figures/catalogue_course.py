@@ -55,8 +55,9 @@ TRENDS: Final = (
     ),
     _line(
         "device_median", "15-min median of a device channel", "",
-        "median of a quarter of an hour, the newest of the last 15 min", "breath noise averages out", "common practice",
-        "core.judgement.device_medians.medians", _TREND + "test_medians_take_the_middle_and_ignore_silence",
+        "median of a quarter of an hour, the newest of the last 15 min", "breath noise averages out",
+        "common practice", "core.judgement.device_medians.medians",
+        _TREND + "test_medians_take_the_middle_and_ignore_silence",
     ),
     _line(
         "sustained", "Sustained past a limit", "", "at least N of M minutes past it, e.g. 10 of 12",

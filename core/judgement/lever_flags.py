@@ -7,6 +7,7 @@ differ, the flag is named. It asks to be looked at; it does not say which way to
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Mapping
 from types import MappingProxyType
 from typing import Final
@@ -98,9 +99,18 @@ ACTS_ON: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType({
 
 
 def flags_on(lever: str, flags: Iterable[FlagFigure]) -> tuple[Message, ...]:
-    """The open flags about what a lever acts on, the strongest first, each once."""
-    about = [f for f in open_flags(flags) if lever in ACTS_ON.get(f.marker, NONE)]
-    first = {f.marker: f for f in reversed(about)}
-    return tuple(
-        Message("lever.flag_open", {"marker": f.marker, "since": f.since}) for f in about if first[f.marker] is f
-    )
+    """The open flags about what a lever acts on, the strongest first; of several limits of one quantity that one."""
+    named: dict[str, Message] = {}
+    for f in open_flags(flags):
+        if lever in ACTS_ON.get(f.marker, NONE):
+            named.setdefault(_quantity(f.marker), Message("lever.flag_open", {"marker": f.marker, "since": f.since}))
+    return tuple(named.values())
+
+
+def _quantity(marker: str) -> str:
+    """What markers of one quantity at several limits share: their name before the number.
+
+    >>> _quantity("rr_above_35"), _quantity("rr_above_30"), _quantity("paco2_rising")
+    ('rr_above', 'rr_above', 'paco2_rising')
+    """
+    return re.split(r"_\d", marker)[0]

@@ -100,3 +100,12 @@ def test_an_acidosis_off_support_asks_for_time_on_the_mask() -> None:
     assert [m.key for m in lever.why] == ["lever.acidosis_off_support"]
     after = next(x for x in levers(context(log + "\n10:00 ph 7.38 paco2 50", "10:05")) if x.key == "time_on_mask")
     assert not after.can_act
+
+
+def test_of_several_limits_of_one_quantity_a_lever_names_the_strongest_alone() -> None:
+    for f in moments():
+        for lever in f.levers:
+            rates = [str(m.values["marker"]) for m in lever.flags if str(m.values["marker"]).startswith("rr_above")]
+            assert len(rates) <= 1
+            over_35 = any(x.marker == "rr_above_35" for x in open_flags(f.flags))
+            assert not rates or not over_35 or rates == ["rr_above_35"]
