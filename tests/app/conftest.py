@@ -11,7 +11,7 @@ from app.policy.names import use
 from app.window.main import MainWindow
 from core.judgement.policy import shipped_policy
 from tests.support.command_line import HEADER, ROWS, Run, on_store
-from tests.support.open_window import make_store, open_window
+from tests.support.open_window import make_store, open_window, settled
 
 
 @pytest.fixture(autouse=True)
@@ -26,6 +26,14 @@ def window(qtbot: QtBot, tmp_path: Path) -> Iterator[MainWindow]:
     """The window on a store of two beds, with its figures shown."""
     with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
         yield made
+
+
+@pytest.fixture
+def on_bed_7(qtbot: QtBot, window: MainWindow) -> MainWindow:
+    """The same with the bed in hand that does not respond."""
+    window.select("bed-7")
+    settled(qtbot, window)
+    return window
 
 
 @pytest.fixture

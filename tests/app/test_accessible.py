@@ -6,7 +6,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QAbstractButton, QAbstractScrollArea, QComboBox, QLabel, QWidget
 
 from app.dialogs.table import TableDialog
-from tests.support.open_window import make_store, open_window, settled
+from tests.support.open_window import settled
 
 PAGES = ("ward", "episode", "map", "compare", "handover", "statistics")
 CHARTS = {
@@ -16,11 +16,8 @@ CHARTS = {
 
 
 @pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        made.select("bed-7")
-        settled(qtbot, made)
-        yield made
+def window(on_bed_7):
+    return on_bed_7
 
 
 def unspoken(root):

@@ -4,15 +4,12 @@ import pytest
 from PySide6.QtCore import Qt
 
 from app.explain.dialog import ExplainDialog
-from tests.support.open_window import make_store, open_window, settled
+from tests.support.open_window import settled
 
 
 @pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        made.select("bed-7")
-        settled(qtbot, made)
-        yield made
+def window(on_bed_7):
+    return on_bed_7
 
 
 def asked(qtbot, window, widget):

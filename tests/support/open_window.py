@@ -73,7 +73,12 @@ def _logged(path: Path) -> Path:
 
 @contextmanager
 def open_window(
-    qtbot: QtBot, path: Path, *, preferences: Preferences | None = None, clock: Clock | None = None
+    qtbot: QtBot,
+    path: Path,
+    *,
+    preferences: Preferences | None = None,
+    clock: Clock | None = None,
+    passphrase: str | None = None,
 ) -> Iterator[MainWindow]:
     """The window with its figures shown; closed with everything in it when the block ends."""
     preferences = preferences or Preferences(cautions_seen=True)
@@ -82,7 +87,7 @@ def open_window(
     qtbot.addWidget(window)
     window.show()
     session = Session(path, zone=ZONE, clock=clock or still(NOW), person="AB")
-    window.show_model(SessionModel(session, Runner(partial(Store.open, path)), window))
+    window.show_model(SessionModel(session, Runner(partial(Store.open, path, passphrase=passphrase)), window))
     qtbot.waitUntil(lambda: window.feed.is_ready and not window.model.runner.is_busy, timeout=WAIT_MS)
     try:
         yield window

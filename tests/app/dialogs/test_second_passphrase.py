@@ -1,23 +1,15 @@
 """A second passphrase, held by the ward lead, opens the store too; changing one leaves the other."""
 
-from functools import partial
-
 import pytest
 
 from app.dialogs.second_passphrase import SecondPassphraseDialog
-from app.keeping.preferences import Preferences
 from app.operations import passphrase as operations
-from app.session.clock import still
-from app.session.model import SessionModel
-from app.session.runner import Runner
-from app.session.state import Session
-from app.window.main import MainWindow
 from core.record.message import RecordError
 from storage import people
 from storage.errors import StoreError
 from storage.keys import Cost, envelope_path, is_recovery_code, open_envelope
 from storage.store import Store
-from tests.support.open_window import NOW, ZONE, settled, until
+from tests.support.open_window import NOW, open_window, settled, until
 
 SECRET, SECOND, NEXT, CHEAP = "four quiet boats tonight", "the lead's own words", "five other boats", Cost(64, 1, 1)
 
@@ -77,29 +69,23 @@ def test_where_people_sign_in_a_ward_lead_sets_it(path, monkeypatch):
 
 
 def test_from_the_window(qtbot, path):
-    window = MainWindow(Preferences(cautions_seen=True))
-    qtbot.addWidget(window)
-    window.show()
-    session = Session(path, zone=ZONE, clock=still(NOW), person="AB")
-    window.show_model(SessionModel(session, Runner(partial(Store.open, path, passphrase=SECRET)), window))
-    until(qtbot, lambda: window.feed.is_ready and not window.model.runner.is_busy)
-    window.actions_by_key["second_passphrase"].trigger()
-    dialog = next(d for d in window.findChildren(SecondPassphraseDialog) if d.isVisible())
-    settled(qtbot, window)
-    assert "none now" in dialog.stands.text()
-    assert dialog.none.isHidden()
-    for line, text in ((dialog.old, "wrong wrong"), (dialog.second, SECOND), (dialog.again, SECOND)):
-        line.setText(text)
-    dialog.go.click()
-    until(qtbot, lambda: "passphrase is wrong" in dialog.wrong.text())
-    dialog.old.setText(SECRET)
-    dialog.go.click()
-    until(qtbot, lambda: "opens the store from now on" in dialog.wrong.text())
-    assert opens(path, SECOND)
-    dialog.none.setChecked(True)
-    dialog.old.setText(SECOND)
-    dialog.go.click()
-    until(qtbot, lambda: "taken away" in dialog.wrong.text())
-    assert not opens(path, SECOND)
-    dialog.reject()
-    window.close()
+    with open_window(qtbot, path, passphrase=SECRET) as window:
+        window.actions_by_key["second_passphrase"].trigger()
+        dialog = next(d for d in window.findChildren(SecondPassphraseDialog) if d.isVisible())
+        settled(qtbot, window)
+        assert "none now" in dialog.stands.text()
+        assert dialog.none.isHidden()
+        for line, text in ((dialog.old, "wrong wrong"), (dialog.second, SECOND), (dialog.again, SECOND)):
+            line.setText(text)
+        dialog.go.click()
+        until(qtbot, lambda: "passphrase is wrong" in dialog.wrong.text())
+        dialog.old.setText(SECRET)
+        dialog.go.click()
+        until(qtbot, lambda: "opens the store from now on" in dialog.wrong.text())
+        assert opens(path, SECOND)
+        dialog.none.setChecked(True)
+        dialog.old.setText(SECOND)
+        dialog.go.click()
+        until(qtbot, lambda: "taken away" in dialog.wrong.text())
+        assert not opens(path, SECOND)
+        dialog.reject()

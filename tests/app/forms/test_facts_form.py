@@ -8,17 +8,14 @@ from app.operations import figures
 from core.record.channels import CHANNELS, Group
 from core.record.instant import HOUR
 from storage.store import Store
-from tests.support.open_window import NOW, make_store, open_window, settled, until
+from tests.support.open_window import NOW, settled, until
 
 Key, Mod = Qt.Key, Qt.KeyboardModifier
 
 
 @pytest.fixture
-def window(qtbot, tmp_path):
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark")) as made:
-        made.select("bed-7")
-        settled(qtbot, made)
-        yield made
+def window(on_bed_7):
+    return on_bed_7
 
 
 def opened(qtbot, window):

@@ -1,7 +1,5 @@
 """The lock hides every screen and keeps what was typed; who proves who they are sees it again."""
 
-from functools import partial
-
 import pytest
 from PySide6.QtCore import QEvent, QPoint, QPointF, Qt, QTimer
 from PySide6.QtGui import QGuiApplication, QKeyEvent, QMouseEvent
@@ -12,16 +10,11 @@ from app.dialogs.people import PeopleDialog
 from app.keeping.lock import IdleWatch
 from app.keeping.lock_page import Way
 from app.keeping.preferences import Preferences
-from app.session.clock import still
-from app.session.model import SessionModel
-from app.session.runner import Runner
-from app.session.state import Session
-from app.window.main import MainWindow
 from app.window.start import application
 from storage import people
 from storage.keys import Cost
 from storage.store import Store
-from tests.support.open_window import NOW, ZONE, make_store, open_window, settled, until
+from tests.support.open_window import NOW, make_store, open_window, settled, until
 
 PIN, OTHER, SECRET = "2580", "7391", "five boats at night"
 
@@ -138,25 +131,19 @@ def test_an_encrypted_store_without_people_opens_by_passphrase_or_code(qtbot, tm
     path = tmp_path / "secret.luffmark"
     with Store.create(path, now=NOW, passphrase=SECRET) as made:
         code = made.recovery_code
-    window = MainWindow(Preferences(cautions_seen=True))
-    qtbot.addWidget(window)
-    window.show()
-    session = Session(path, zone=ZONE, clock=still(NOW), person="AB")
-    window.show_model(SessionModel(session, Runner(partial(Store.open, path, passphrase=SECRET)), window))
-    until(qtbot, lambda: window.feed.is_ready and not window.model.runner.is_busy)
-    for secret in (SECRET, code):
-        window.keeping.locking.idle()
-        page = window.keeping.lock.page
-        assert page.way is Way.PASSPHRASE
-        assert page.initials.isHidden()
-        qtbot.keyClicks(page.secret, "something else")
-        page.go.click()
-        until(qtbot, lambda page=page: "passphrase is wrong" in page.wrong.text())
-        qtbot.keyClicks(page.secret, secret)
-        page.go.click()
-        until(qtbot, lambda: not window.keeping.lock.is_locked)
-        assert window.model.session.person == "AB"
-    window.close()
+    with open_window(qtbot, path, passphrase=SECRET) as window:
+        for secret in (SECRET, code):
+            window.keeping.locking.idle()
+            page = window.keeping.lock.page
+            assert page.way is Way.PASSPHRASE
+            assert page.initials.isHidden()
+            qtbot.keyClicks(page.secret, "something else")
+            page.go.click()
+            until(qtbot, lambda page=page: "passphrase is wrong" in page.wrong.text())
+            qtbot.keyClicks(page.secret, secret)
+            page.go.click()
+            until(qtbot, lambda: not window.keeping.lock.is_locked)
+            assert window.model.session.person == "AB"
 
 
 def test_a_plain_store_without_people_is_hidden_and_any_key_or_click_shows_it(qtbot, tmp_path):
