@@ -114,7 +114,9 @@ class LaneWords:
 
     def _subtitle(self, f: EpisodeFigures, apart: str, moved: str) -> str:
         s = f.support
-        told = f"{self._indication(f)}, {apart}" if apart else self._indication(f)
+        told = self._indication(f)
+        if apart:  # first: a narrow place cuts the end
+            told = f"{apart}, {told}"
         if off_mask_word(f, self.zone):
             return translate("ward", "{indication}, mask off").format(indication=told)
         if s.silent_since is not None:  # first, so that a narrow place does not cut it off

@@ -26,10 +26,12 @@ LINES: Final[tuple[tuple[str, Any], ...]] = (
     ("16/6 35", QT_TRANSLATE_NOOP("help", "IPAP 16, EPAP 6 cmH2O, FiO2 35 %")),
     ("ps 10 epap 5", QT_TRANSLATE_NOOP("help", "IPAP 15, EPAP 5 cmH2O")),
     ("14:20 rr 28 spo2 91 gcs 14", QT_TRANSLATE_NOOP("help", "at 14:20; 23:50 typed at 00:10 is yesterday")),
-    ("20m ago ph 7,28 paco2 8.3 kPa", QT_TRANSLATE_NOOP("help", "decimal comma or point, mmHg or kPa")),
+    ("20m ago ph 7,28 paco2 8.3 pao2 7.9 kPa", QT_TRANSLATE_NOOP(
+        "help", "decimal comma or point; mmHg or kPa, once for all pressures of a gas")),
     ("yesterday 23:40 ... | first 01:30 ...", QT_TRANSLATE_NOOP(
         "help", "the day before; first or second of an hour that came twice")),
-    ("cpap 10 fio2 60%", QT_TRANSLATE_NOOP("help", "CPAP mode")),
+    ("cpap 10 60", QT_TRANSLATE_NOOP("help", "CPAP 10 cmH2O, FiO2 60 %")),
+    ("rr28 spo291", QT_TRANSLATE_NOOP("help", "a value may touch its name")),
     ("flow 4", QT_TRANSLATE_NOOP("help", "oxygen by flow, L/min; FiO2 is not known then")),
     ("gas sent | mask off | mask on", QT_TRANSLATE_NOOP("help", "events")),
     ("label Bed 12", QT_TRANSLATE_NOOP("help", "the patient moved; other facts by the form 'Patient facts'")),
