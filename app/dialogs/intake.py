@@ -56,9 +56,6 @@ class IntakeDialog(AskingDialog):
         self.leave_out = QCheckBox()
         self.leave_out.hide()
         self.leave_out.toggled.connect(self._leave_all)
-        self.body.addWidget(self.summary)
-        self.body.addWidget(self.bar)
-        self.add_body(self.table)
         self.patients = PatientRows(theme)
         self.patients.said.connect(self._patient_said)
         self.codes = CodeRows(theme)
@@ -66,13 +63,7 @@ class IntakeDialog(AskingDialog):
         self.left = plain_label()
         self.left.setProperty("role", "quiet")
         self._clock = QElapsedTimer()
-        self.body.addWidget(self.left)
-        self.body.addWidget(self.patients)
-        self.body.addWidget(self.codes)
-        self.body.addWidget(self.leave_out)
-        self.body.setStretchFactor(self.table, 100)
-        self.body.addStretch(1)  # while there is no table, the bar stays under its words
-        self.table.hide()
+        self._lay_out()
         self.resize(theme.px(900), theme.px(560))
         self.go.setEnabled(False)
         self.summary.setText(self.tr("Reading {name}. Nothing is recorded yet.").format(name=path.name))
@@ -80,6 +71,16 @@ class IntakeDialog(AskingDialog):
         model.runner.progressed.connect(self._progressed)
         self._number = 0
         self._ask()
+
+    def _lay_out(self) -> None:
+        self.body.addWidget(self.summary)
+        self.body.addWidget(self.bar)
+        self.add_body(self.table)
+        for part in (self.left, self.patients, self.codes, self.leave_out):
+            self.body.addWidget(part)
+        self.body.setStretchFactor(self.table, 100)
+        self.body.addStretch(1)  # while there is no table, the bar stays under its words
+        self.table.hide()
 
     def _ask(self) -> None:
         """Read the file with all that was said of it."""

@@ -176,21 +176,7 @@ class RecoveryCodeDialog(AskingDialog):
         self.setWindowTitle(self.tr("Recovery code"))
         self.go.setText(self.tr("Done"))
         self._name, self._code, self._opens = name, code, opens
-        title = QLabel(
-            self.tr("The way in when nobody knows the passphrase") if opens
-            else self.tr("The way in when nobody has a PIN that fits")
-        )  # fmt: skip
-        title.setProperty("role", "emphasis")
-        self.body.addWidget(title)
-        told = (
-            self.tr("This code opens {store} as the passphrase does, and gives a PIN to who has none.") if opens
-            else self.tr("This code gives a PIN for {store} to who has none, or has forgotten theirs.")
-        )  # fmt: skip
-        keep = self.tr(
-            "It is shown this once and kept nowhere in the computer. Write it down or print it, seal it, and put it "
-            "where the ward keeps its keys."
-        )
-        self.body.addWidget(_text(f"{told.format(store=name)} {keep}"))
+        self._say_what_it_is()
         self.code = QLineEdit(code)
         self.code.setReadOnly(True)
         family = QFontDatabase.systemFont(QFontDatabase.SystemFont.FixedFont).family()
@@ -212,6 +198,23 @@ class RecoveryCodeDialog(AskingDialog):
         self.copy.clicked.connect(self._copy)
         self.print.clicked.connect(self._print)
         self.resize(theme.px(560), theme.px(300))
+
+    def _say_what_it_is(self) -> None:
+        title = QLabel(
+            self.tr("The way in when nobody knows the passphrase") if self._opens
+            else self.tr("The way in when nobody has a PIN that fits")
+        )  # fmt: skip
+        title.setProperty("role", "emphasis")
+        self.body.addWidget(title)
+        told = (
+            self.tr("This code opens {store} as the passphrase does, and gives a PIN to who has none.") if self._opens
+            else self.tr("This code gives a PIN for {store} to who has none, or has forgotten theirs.")
+        )  # fmt: skip
+        keep = self.tr(
+            "It is shown this once and kept nowhere in the computer. Write it down or print it, seal it, and put it "
+            "where the ward keeps its keys."
+        )
+        self.body.addWidget(_text(f"{told.format(store=self._name)} {keep}"))
 
     def reject(self) -> None:
         """Esc and the window's cross close nothing before the code is kept."""
