@@ -35,7 +35,7 @@ _Form = tuple[int, int, int, int, bytes]
 
 @dataclass(frozen=True, slots=True)
 class Block:
-    """One encoded block: `n` samples from `t0` to `t1`, both included; `empty` of them, where it is known, are NaN."""
+    """One encoded block: `n` samples from `t0` to `t1`, both included; `empty` of them, where known, are NaN."""
 
     t0: int
     t1: int
