@@ -104,7 +104,7 @@ class LaneWords:
             due_word=self._due_word(due) if not ended else self._end_word(f),
             due_late=due is not None and due.state == "overdue",
             first_word=translate("ward", "See first") if first else "",
-            closed=ended,
+            closed=ended and (strongest is None or strongest.tier == _TIERS[-1]),
             off_mask=bool(off_mask_word(f, self.zone)),
             sentence=self.lane_sentence(f),
             payload=f.episode,

@@ -132,6 +132,15 @@ def test_an_ended_lane_is_closed_and_owes_nothing():
     assert lane.flag_word == ""
 
 
+def test_a_lane_whose_patient_relapsed_after_support_is_not_drawn_as_closed():
+    bed = ended()
+    flag = next(f for f in failing().figures.flags if f.tier == "escalate")
+    lane = lane_of(replace(bed, figures=replace(bed.figures, flags=(flag,))))
+    assert (lane.closed, lane.tier) == (False, Tier.ESCALATE)
+    remark = replace(flag, tier="remark")
+    assert lane_of(replace(bed, figures=replace(bed.figures, flags=(remark,)))).closed
+
+
 def test_two_with_one_label_are_told_apart():
     assert "from 22:45, E1" in lane_of(leaking(2), apart="from 22:45, E1").subtitle
 
