@@ -77,10 +77,10 @@ def test_entries_are_kept_or_refused_and_go_on_once_there_is_room(disk: Path, se
         assert taken > head
         assert store.head() == taken  # reading goes on, and says what was acknowledged
         assert len(store.entries("E1")) == taken
-        for work in (
-            lambda: store.put_layout("a", "b" * 20_000),
-            lambda: store.put_draft("a", "b" * 20_000),
-            lambda: store.put_document("handover", "a", b"x" * 90_000, "AB", NOW + DAY),
+        for work in (  # each larger than the room that one entry may leave: a commit touches some 17 pages
+            lambda: store.put_layout("a", "b" * 150_000),
+            lambda: store.put_draft("a", "b" * 150_000),
+            lambda: store.put_document("handover", "a", b"x" * 200_000, "AB", NOW + DAY),
             lambda: store.append([], by="AB", operation="intake", now=NOW + DAY, samples=[minutes()]),
         ):
             assert failure(work) in FULL
@@ -94,7 +94,7 @@ def test_entries_are_kept_or_refused_and_go_on_once_there_is_room(disk: Path, se
 
 
 def minutes() -> DeviceSamples:
-    t = NOW + MINUTE * np.arange(20_000, dtype=np.int64)
+    t = NOW + MINUTE * np.arange(200_000, dtype=np.int64)
     return DeviceSamples("E1", "leak", "dev", t, np.random.default_rng(1).integers(0, 90, t.size).astype(float))
 
 
