@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections import Counter
+from collections.abc import Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -16,6 +17,7 @@ from core.figures.sf_course import sf_course
 from core.judgement.policy import Policy, shipped_policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.instant import HOUR, Instant
+from core.record.labels import alike
 
 ROWS = ("ph", "paco2", "pf", "sf", "rr", "pressure_support")
 LEAST, MOST = 2, 8
@@ -66,8 +68,10 @@ def compare(
 ) -> Comparison:
     """Lay episodes over each other. `policy` says up to which SpO2 an S/F means something (None: the shipped one)."""
     known = [e for e in chosen if e.figures.support.since is not None][:MOST]
-    left_out = tuple(e.figures.label for e in chosen if e.figures.support.since is None)
-    names = {n: episode_name(e.figures) for n, e in enumerate(known, 1)}
+    shared = Counter(alike(e.figures.label) for e in chosen)
+    apart = {e.figures.episode for e in chosen if shared[alike(e.figures.label)] > 1}
+    left_out = tuple(_with_key(e.figures.label, e.figures, apart) for e in chosen if e.figures.support.since is None)
+    names = {n: _with_key(episode_name(e.figures), e.figures, apart) for n, e in enumerate(known, 1)}
     rules = policy or shipped_policy()
     rows = tuple(_row(key, known, answers, gas_unit, rules) for key in ROWS)
     last = max((float(line.hours[-1]) for row in rows for line in row.lines if line.hours.size), default=1.0)
@@ -78,6 +82,11 @@ def episode_name(f: EpisodeFigures) -> str:
     """Label and indication."""
     indication = f.profile.get("indication")
     return f"{f.label}, {indication_word(str(indication))}" if indication else f.label
+
+
+def _with_key(name: str, f: EpisodeFigures, apart: Collection[str]) -> str:
+    """A name, with the key of an episode whose label another of those compared bears too."""
+    return f"{name} ({f.episode})" if f.episode in apart else name
 
 
 def _row(
