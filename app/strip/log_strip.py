@@ -27,14 +27,11 @@ from app.strip.reading_time import ReadingTime
 from app.strip.said_html import completion_html, marked, preview_html, quiet
 from app.strip.sent_lines import Sent, SentLines
 from app.strip.settle_time import SettleTime
-from app.strip.state import State
+from app.strip.state import NOT_SHOWN, State
 from app.strip.strip_frame import StripFrame
 from app.strip.undo_stack import UndoStack
 from app.words import Reader, sentence
 from core.record.episode import Episode
-
-_NOT_SHOWN = (State.REFUSED, State.IDLE, State.UNDOING)
-"""What the line would record does not stand under it."""
 
 
 class LogStrip(StripFrame):
@@ -51,16 +48,14 @@ class LogStrip(StripFrame):
         self.state = State.IDLE
         self._preview: Preview | None = None
         self._awaited: str | None = None
-        self._pressed_early = False
-        self._came_before = False
+        self._pressed_early = self._came_before = False
         self._slow = ReadingTime(self._say_reading, self)
         self.settle = SettleTime()
         self._labels: dict[str, str] = {}
         self._news: dict[str, str] = {}
         self._undo, self._lines, self._left = UndoStack(), SentLines(), LeftLines()
         self._told_of: Recorded | None = None
-        self._off_mask = False
-        self._closed = ""
+        self._off_mask, self._closed = False, ""
         self._connect()
         self.set_theme(theme)
         self.set_patient(None, "", "UTC", "mmHg")
@@ -81,11 +76,9 @@ class LogStrip(StripFrame):
         self, record: Episode | None, label: str, zone: str, gas_unit: str, *, off_mask: bool = False
     ) -> None:
         """For whom the strip logs. A line half typed for another is never carried over: it waits for its own."""
-        other = (record.key if record is not None else None) != (
-            self._record.key if self._record is not None else None
-        )
-        if other and self._record is not None and not self._closed:
-            self._left.keep(self._record.key, self.line.text())
+        other = (record.key if record is not None else None) != self.patient
+        if other:
+            self._leave_line()
         self._record, self._label, self._zone, self._gas_unit = record, label, zone, gas_unit
         if record is not None:
             self._labels[record.key] = label
@@ -104,16 +97,18 @@ class LogStrip(StripFrame):
             self._become(State.TOLD, escape(self._news.pop(record.key)), of=of)
 
     def set_closed(self, why: str) -> None:
-        """Take no line, and say why; "" opens the strip again. What was half typed is taken away."""
+        """Take no line, and say why; "" opens the strip again, and what was half typed is back."""
+        self._leave_line()
         self._closed = why
         for widget in (self.line, *self.buttons.values()):
             widget.setEnabled(self._record is not None and not why)
         self._clear()
+        self._put_back()
 
     @property
     def patient(self) -> str | None:
         """The key of the episode it logs for."""
-        return None if self._record is None else self._record.key
+        return self._record.key if self._record else None
 
     def set_text(self, text: str) -> None:
         """Put words on the line and preview them."""
@@ -149,6 +144,10 @@ class LogStrip(StripFrame):
         """Empty the line and hand the focus back; nothing is recorded."""
         self._clear()
         self.left.emit()
+
+    def _leave_line(self) -> None:
+        if self._record is not None:
+            self._left.keep(self._record.key, self.line.text())
 
     def _clear(self) -> None:
         self.line.clear()
@@ -237,7 +236,7 @@ class LogStrip(StripFrame):
         if self._awaited is not None:
             self._pressed_early = True
             self._say_reading()
-        elif self.state in _NOT_SHOWN and self._preview is None and self.line.text().strip():
+        elif self.state in NOT_SHOWN and self._preview is None and self.line.text().strip():
             self._edited(self.line.text())  # it came back: shown anew before it is recorded
         elif not self.settle.is_over:
             return
@@ -277,7 +276,7 @@ class LogStrip(StripFrame):
 
     def _put_back(self) -> None:
         """Put the line that could not be recorded back for its patient; Enter shows anew what it would record."""
-        if self._record is None or self.line.text():
+        if self._record is None or self.line.text() or self._closed:
             return
         failed = self._lines.back_for(self._record.key)
         self.line.setText(failed or self._left.back_for(self._record.key))

@@ -13,3 +13,7 @@ class State(StrEnum):
     REFUSED = "refused"
     TOLD = "told"
     UNDOING = "undoing"
+
+
+NOT_SHOWN = (State.REFUSED, State.IDLE, State.UNDOING)
+"""What the line would record does not stand under it."""

@@ -193,6 +193,19 @@ def test_a_half_typed_line_waits_for_its_own_patient(qtbot, window):
     assert window.strip.line.text() == ""
 
 
+def test_a_half_typed_line_waits_while_the_strip_is_closed(qtbot, window):
+    window.strip.focus()
+    type_line(qtbot, window, "22/6 3")
+    window.strip.set_closed("Looking back")
+    assert window.strip.line.text() == ""
+    window.select("bed-3")
+    window.strip.set_closed("")
+    assert window.strip.line.text() == ""
+    window.select("bed-7")
+    assert window.strip.line.text() == "22/6 3"
+    assert window.strip.state == "idle"
+
+
 def test_a_line_that_comes_back_is_shown_before_it_is_recorded(qtbot, window):
     window.strip.focus()
     type_line(qtbot, window, "rr 24")
