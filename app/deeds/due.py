@@ -55,5 +55,4 @@ class DueDeeds(Doer):
             self.asking.deleteLater()
             self.asking = None
         if self.window.strip is not None:
-            self.window.strip.remember(outcome.value)
-        self.window.say(self.tr("Your word on the due item is recorded. Ctrl+Z takes it back."))
+            self.window.strip.take(outcome.value, self.tr("Your word on the due item is recorded."))

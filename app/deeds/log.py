@@ -95,9 +95,8 @@ class LogDeeds(FormDeeds):
         self._flag_said(outcome)
 
     def _flag_said(self, outcome: Outcome[Recorded]) -> None:
-        self.strip.remember(outcome.value)
-        label = self.strip.whom.text()
-        self.window.say(self.tr("Your word on the flag is recorded for {label}.").format(label=label))
+        told = self.tr("Your word on the flag is recorded for {label}.").format(label=self.strip.whom.text())
+        self.strip.take(outcome.value, told)
 
     def _flag(self) -> FlagFigure | None:
         """The flag that has the focus, else the one chosen on its lane, else the strongest open one."""
