@@ -45,7 +45,10 @@ def row_digest(table: str, row: Mapping[str, Any]) -> str:
 def _chunk_digest(row: Mapping[str, Any]) -> str:
     """The same for a block of samples, whose columns hold no fractions: a file brings tens of thousands of them."""
     values = [_CHUNK, *_chunk_columns(row)]
-    values[_SHA_AT] = values[_SHA_AT].hex()
+    sha = values[_SHA_AT]
+    if not isinstance(sha, bytes):
+        raise TypeError(f"the digest of a block is {sha!r}")
+    values[_SHA_AT] = sha.hex()
     return sha256(row["salt"] + _encode_plain(values)).hexdigest()
 
 

@@ -50,3 +50,9 @@ def test_many_blocks_are_kept_as_few_are(store: Store, monkeypatch: pytest.Monke
     assert np.array_equal(one.t, other.t)
     assert np.array_equal(one.v, other.v)
     assert store.verify() == ()
+
+
+def test_a_block_without_its_digest_is_told_as_what_is_never_written() -> None:
+    row = dict.fromkeys(ROW_COLUMNS["chunk"]) | {"salt": b"0" * 16}
+    with pytest.raises(TypeError):
+        row_digest("chunk", row)

@@ -13,6 +13,7 @@ from core.judgement.policy import policy_hash, shipped_text
 from core.record.entries import NewEntry
 from core.record.instant import MINUTE
 from storage.errors import StoreError
+from storage.row_proofs import COVERED
 from storage.store import Store
 from tests.support.command_line import run
 from tests.support.flipped_figures import LATER, NOW, outcomes, small, told, used_bytes
@@ -119,9 +120,16 @@ def test_the_ledger_cut_off_or_its_time_changed_is_no_answer(path: Path) -> None
         policy.in_force(store)
 
 
-def test_a_store_of_an_older_program_gets_its_proofs_when_it_is_opened_for_writing(path: Path) -> None:
+@pytest.mark.parametrize(
+    "older",
+    [
+        "DELETE FROM cache",  # it kept nothing beside the ledger
+        f"UPDATE cache SET key = 'covered/0' WHERE key = '{COVERED}'",  # it summed up in another way
+    ],
+)
+def test_a_store_of_an_older_program_gets_its_proofs_when_it_is_opened_for_writing(path: Path, older: str) -> None:
     truth = told(path)
-    tamper(path, "DELETE FROM cache")
+    tamper(path, older)
     with Store.open(path, read_only=True) as store:
         assert not store.proves_rows
     assert told(path) == truth
@@ -141,7 +149,7 @@ def test_no_proof_vouches_for_what_the_chain_does_not(path: Path) -> None:
 
 
 def test_what_an_older_program_wrote_between_lets_the_proofs_go_and_an_opening_makes_them_anew(path: Path) -> None:
-    tamper(path, "UPDATE cache SET data = CAST('3' AS BLOB) WHERE key = 'covered'")
+    tamper(path, f"UPDATE cache SET data = CAST('3' AS BLOB) WHERE key = '{COVERED}'")
     new = NewEntry("E1", "rr", NOW, 22.0, None, "22", "/min", 0, "UTC", "AB")
     with Store.open(path, read_only=True) as store:
         assert not store.proves_rows
