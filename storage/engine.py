@@ -90,7 +90,12 @@ class Database:
                 yield connection
         except RecordError:
             raise
-        except (TypeError, ValueError, KeyError, OverflowError) as error:
+        except (
+            TypeError,
+            ValueError,
+            LookupError,
+            OverflowError,
+        ) as error:  # a row may even come without its columns
             raise store_error("store.damaged", path=self.path.name, detail=str(error)[:200]) from error
 
     @contextmanager

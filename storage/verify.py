@@ -47,8 +47,11 @@ def _proofs(database: Database) -> list[Message]:
     """What is kept to prove rows as they are read, held against the ledger once that is known to be sound."""
     if database.is_keyed:
         return []
-    with database.read() as connection:
-        wrong = row_proofs.differs(connection)
+    try:
+        with database.read() as connection:
+            wrong = row_proofs.differs(connection)
+    except StoreError as error:
+        return [Message("verify.unreadable", {"path": database.path.name, **error.message.values})]
     return [] if wrong is None else [Message("verify.derived", {"table": "cache", "episode": wrong, "count": 1})]
 
 

@@ -193,3 +193,17 @@ def test_facts_stay_sound_through_all_that_changes_them(filled: Path) -> None:
         assert store.fact("archive_of") == "x"
     tamper(filled, "DELETE FROM store_facts WHERE key = 'digest'")  # as a store was before facts had digests
     assert findings(filled) == []
+
+
+@pytest.mark.parametrize("error", [TypeError("no text"), KeyError("x"), IndexError("tuple index out of range")])
+def test_what_a_row_can_only_be_by_damage_is_refused_in_words(store: Store, error: Exception) -> None:
+    """A damaged page may give a row of other kinds than were written, or one without its columns."""
+    with pytest.raises(StoreError, match=r"store\.damaged"), store._opened.database.read():
+        raise error
+
+
+def test_a_proof_of_rows_that_cannot_be_read_is_a_finding_and_no_crash(filled: Path) -> None:
+    tamper(filled, "UPDATE cache SET data = x'' WHERE key LIKE 'episode/%'")
+    with Store.open(filled) as store:
+        assert {m.key for m in store.verify()} <= {"verify.derived", "verify.unreadable"}
+        assert store.verify()

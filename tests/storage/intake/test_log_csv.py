@@ -248,7 +248,7 @@ def test_an_open_episode_of_the_same_label_is_said(read: Reader, store: Store) -
 
 def test_another_value_than_the_store_has_for_the_moment_is_taken_and_marked(read: Reader, store: Store) -> None:
     first = read(f"E1,{AT},ph,7.30,,AB,", f"E1,{AT},rr,20,/min,AB,", f"E1,{AT},mode,CPAP,,AB,")
-    store.append([d.entry for d in first.entries], by="AB", now=NOW)
+    store.append([d.entry for d in first.entries], by="AB", operation="log", now=NOW)
     again = read(
         f"E1,{AT},ph,7.24,,CD,", f"E1,{AT},rr,20,/min,CD,", f"E1,{AT},mode,BPAP-S,,CD,", f"E1,{AT},hr,90,,CD,",
         f"E2,{AT},ph,7.24,,CD,", existing=store,
