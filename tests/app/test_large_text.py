@@ -1,5 +1,7 @@
 """With text up to twice as large nothing that can be pressed is cut, and lanes keep their place."""
 
+from contextlib import contextmanager
+
 import pytest
 from PySide6.QtWidgets import QAbstractButton, QLabel, QWidget
 
@@ -9,12 +11,19 @@ from app.ward.ordering import Order
 from tests.support.open_window import make_store, open_window, settled
 
 
+@contextmanager
+def enlarged(qtbot, tmp_path, scale, width=1280, height=800):
+    """The window on two beds with text so many times as large."""
+    preferences = Preferences(text_scale=scale, cautions_seen=True)
+    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
+        window.resize(width, height)
+        yield window
+
+
 @pytest.mark.parametrize("scale", [1.0, 1.3, 1.5, 2.0])
 @pytest.mark.parametrize("size", [(1280, 800), (1920, 1080)])
 def test_no_button_is_cut(qtbot, tmp_path, scale, size):
-    preferences = Preferences(text_scale=scale, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(*size)
+    with enlarged(qtbot, tmp_path, scale, *size) as window:
         for page in ("ward", "episode", "handover"):
             window.show_page(page)
             settled(qtbot, window)
@@ -73,9 +82,7 @@ def test_what_stands_at_the_right_end_does(qtbot):
 
 @pytest.mark.parametrize("scale", [1.0, 1.5, 2.0])
 def test_the_readout_is_whole_and_the_side_can_be_reached(qtbot, tmp_path, scale):
-    preferences = Preferences(text_scale=scale, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(1280, 800)
+    with enlarged(qtbot, tmp_path, scale) as window:
         window.open_episode("bed-7")
         settled(qtbot, window)
         qtbot.wait(20)
@@ -91,9 +98,7 @@ def test_the_readout_is_whole_and_the_side_can_be_reached(qtbot, tmp_path, scale
 
 
 def test_large_text_leaves_room_for_two_lanes(qtbot, tmp_path):
-    preferences = Preferences(text_scale=2.0, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(1280, 800)
+    with enlarged(qtbot, tmp_path, 2.0) as window:
         settled(qtbot, window)
         qtbot.wait(20)
         assert window.pages.ward.lanes.height() >= window.theme.px(180)
@@ -103,9 +108,7 @@ def test_large_text_leaves_room_for_two_lanes(qtbot, tmp_path):
 @pytest.mark.parametrize(("scale", "width", "one_line"), [(1.0, 1280, True), (1.0, 1920, True), (1.5, 1920, True),
                                                           (2.0, 1300, False)])  # fmt: skip
 def test_the_line_on_top_stands_beside_the_menus_where_it_fits(qtbot, tmp_path, scale, width, one_line):
-    preferences = Preferences(text_scale=scale, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(width, 800)
+    with enlarged(qtbot, tmp_path, scale, width, 800) as window:
         settled(qtbot, window)
         qtbot.wait(20)
         bar = window.menuBar()
@@ -130,9 +133,7 @@ def test_the_line_on_top_stands_beside_the_menus_where_it_fits(qtbot, tmp_path, 
 
 @pytest.mark.parametrize("scale", [1.5, 2.0])
 def test_shift_figures_keep_their_choices_and_their_numbers(qtbot, tmp_path, scale):
-    preferences = Preferences(text_scale=scale, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(1280, 800)
+    with enlarged(qtbot, tmp_path, scale) as window:
         window.show_page("statistics")
         settled(qtbot, window)
         qtbot.wait(20)
@@ -146,9 +147,7 @@ def test_shift_figures_keep_their_choices_and_their_numbers(qtbot, tmp_path, sca
 
 @pytest.mark.parametrize("scale", [1.0, 1.5, 2.0])
 def test_the_map_and_its_words_share_the_page(qtbot, tmp_path, scale):
-    preferences = Preferences(text_scale=scale, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(1280, 800)
+    with enlarged(qtbot, tmp_path, scale) as window:
         window.select("bed-7")
         window.show_page("map")
         settled(qtbot, window)
@@ -161,9 +160,7 @@ def test_the_map_and_its_words_share_the_page(qtbot, tmp_path, scale):
 
 
 def test_whom_to_see_first_is_named_wherever_another_order_or_a_filter_hides_the_lane(qtbot, tmp_path):
-    preferences = Preferences(text_scale=2.0, cautions_seen=True)
-    with open_window(qtbot, make_store(tmp_path / "ward.luffmark"), preferences=preferences) as window:
-        window.resize(1280, 800)
+    with enlarged(qtbot, tmp_path, 2.0) as window:
         settled(qtbot, window)
         ward = window.pages.ward
         assert ward.shown_keys()[0] == "bed-7"

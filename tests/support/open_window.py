@@ -114,3 +114,9 @@ def _app():  # type: ignore[no-untyped-def]
     from PySide6.QtWidgets import QApplication
 
     return QApplication.instance()
+
+
+def type_line(qtbot: QtBot, window: MainWindow, text: str) -> None:
+    """Type on the line as a person does, and wait for what is said of it."""
+    qtbot.keyClicks(window.strip.line, text)
+    settled(qtbot, window)

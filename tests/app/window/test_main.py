@@ -5,7 +5,7 @@ from PySide6.QtWidgets import QAbstractButton, QAbstractScrollArea, QApplication
 
 from app.chart.shapes import LaneKind
 from app.look.theme import DARK, LIGHT
-from tests.support.open_window import NOW, make_store, open_window, settled, until
+from tests.support.open_window import NOW, make_store, open_window, settled, type_line, until
 
 Key, Mod = Qt.Key, Qt.KeyboardModifier
 
@@ -16,11 +16,6 @@ def lane(window, key="bed-7"):
 
 def settings_in(window):
     return [i.sentence for i in lane(window).items if i.kind is LaneKind.SETTING]
-
-
-def type_line(qtbot, window, text):
-    qtbot.keyClicks(window.strip.line, text)
-    settled(qtbot, window)
 
 
 def test_the_worst_is_seen_first_and_chosen(window):
@@ -101,45 +96,6 @@ def test_escape_leaves_all_untouched(qtbot, window):
     assert window.model.session.head == head
 
 
-def test_an_unusual_value_asks_and_only_a_second_enter_says_yes(qtbot, window):
-    head = window.model.session.head
-    seconds = [100.0]
-    window.strip.settle.clock = lambda: seconds[0]
-    window.strip.focus()
-    type_line(qtbot, window, "spo2 62")
-    assert "62 %" in window.strip.plain()
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    assert window.strip.state == "asking"
-    assert window.model.session.head == head
-    seconds[0] += 0.69  # the second half of a double press
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    assert window.strip.state == "asking"
-    seconds[0] += 0.02
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    until(qtbot, lambda: window.feed.answers["bed-7"].record.number("spo2").v[-1] == 62)
-    assert not window.feed.answers["bed-7"].record.number("spo2").doubt[-1]
-
-
-def test_a_line_that_cannot_be_read_is_refused_in_words(qtbot, window):
-    head = window.model.session.head
-    window.strip.focus()
-    type_line(qtbot, window, "ipap 99")
-    assert "Not recorded" in window.strip.plain()
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    settled(qtbot, window)
-    assert window.model.session.head == head
-
-
-def test_tab_completes(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "ipa")
-    assert "ipap" in window.strip.plain()
-    qtbot.keyClick(window.strip.line, Key.Key_Tab)
-    assert window.strip.line.text() == "ipap "
-    assert window.strip.line.hasFocus()
-    settled(qtbot, window)
-
-
 def test_one_key_each_for_gas_sent_and_the_mask(qtbot, window):
     qtbot.keyClick(window, Key.Key_F6)
     settled(qtbot, window)
@@ -160,98 +116,6 @@ def test_one_key_each_for_gas_sent_and_the_mask(qtbot, window):
     qtbot.keyClick(window, Key.Key_F9)
     settled(qtbot, window)
     assert window.strip.line.text() == "told "
-
-
-def test_a_half_typed_line_never_goes_to_another_patient(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "22/6")
-    window.select("bed-3")
-    assert window.strip.whom.text() == "Bed 3"
-    assert window.strip.line.text() == ""
-    assert window.strip.state == "idle"
-
-
-def test_a_half_typed_line_waits_for_its_own_patient(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "22/6 3")
-    window.select("bed-3")
-    type_line(qtbot, window, "rr 2")
-    window.select("bed-7")
-    assert window.strip.line.text() == "22/6 3"
-    assert window.strip.plain().startswith("This line was left here and is not recorded.")
-    head = window.model.session.head
-    window.strip.focus()
-    qtbot.keyClick(window.strip.line, Key.Key_End)
-    qtbot.keyClicks(window.strip.line, "5")
-    settled(qtbot, window)
-    assert "FiO2 35 %" in window.strip.plain()
-    assert window.model.session.head == head
-    qtbot.keyClick(window.strip.line, Key.Key_Escape)
-    window.select("bed-3")
-    assert window.strip.line.text() == "rr 2"
-    window.select("bed-7")
-    assert window.strip.line.text() == ""
-
-
-def test_a_half_typed_line_waits_while_the_strip_is_closed(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "22/6 3")
-    window.strip.set_closed("Looking back")
-    assert window.strip.line.text() == ""
-    window.select("bed-3")
-    window.strip.set_closed("")
-    assert window.strip.line.text() == ""
-    window.select("bed-7")
-    assert window.strip.line.text() == "22/6 3"
-    assert window.strip.state == "idle"
-
-
-def test_a_line_that_comes_back_is_shown_before_it_is_recorded(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "rr 24")
-    window.select("bed-3")
-    window.select("bed-7")
-    head = window.model.session.head
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    settled(qtbot, window)
-    assert window.model.session.head == head
-    assert "Respiratory rate 24/min" in window.strip.plain()
-
-
-def test_an_undo_that_is_said_is_left_by_escape_and_by_another_patient(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "22/6")
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    until(qtbot, lambda: window.strip.can_undo)
-    window.select("bed-3")
-    window.actions_by_key["undo"].trigger()
-    assert "Bed 7 is not the patient in hand." in window.strip.plain()
-    qtbot.keyClick(window.strip.line, Key.Key_Escape)
-    assert window.strip.state == "idle"
-    window.actions_by_key["undo"].trigger()
-    window.select("bed-7")
-    assert window.strip.state == "idle"
-    settled(qtbot, window)
-    assert window.strip.can_undo
-
-
-def test_the_key_to_the_line_is_no_part_of_it_and_a_word_after_a_question_is_one_of_its_own(qtbot, window):
-    window.strip.focus()
-    type_line(qtbot, window, "/rr28")
-    assert window.strip.line.text() == "rr28"
-    assert "Respiratory rate 28/min" in window.strip.plain()
-    window.strip.focus()  # all is chosen: the key replaces nothing
-    qtbot.keyClick(window.strip.line, Key.Key_Slash)
-    assert window.strip.line.text() == "rr28"
-    window.strip.leave()
-    window.strip.focus()
-    type_line(qtbot, window, "rr 55 mask off")
-    qtbot.keyClick(window.strip.line, Key.Key_Return)
-    assert window.strip.state == "asking"
-    qtbot.keyClicks(window.strip.line, "hr 90")
-    settled(qtbot, window)
-    assert window.strip.line.text() == "rr 55 mask off hr 90"
-    assert "Heart rate 90/min" in window.strip.plain()
 
 
 def test_the_keyboard_alone_goes_through_the_ward_and_the_episodes(qtbot, window):
