@@ -19,9 +19,10 @@ from threading import Condition
 from typing import TYPE_CHECKING, Any
 from weakref import WeakMethod
 
-from PySide6.QtCore import QObject, QThread, Signal, Slot
+from PySide6.QtCore import QObject, QThread, QTimer, Signal, Slot
 
 from app.operations.outcome import CancelledError, Outcome, watched
+from app.session import garbage
 from app.session.failure import Failure, failure_of
 from core.record.instant import Instant
 
@@ -153,6 +154,10 @@ class Runner(QObject):
         self._worker = _Worker(opener, self)
         self._worker.finished_job.connect(self._deliver)
         self._worker.progressed.connect(self._progress)
+        self._collecting = QTimer(self)
+        self._collecting.timeout.connect(garbage.collect)
+        self._collecting.start(garbage.EVERY_MS)
+        garbage.worker_begins()
         self._worker.start()
 
     def submit(
@@ -190,6 +195,8 @@ class Runner(QObject):
             self._closed = True
             self._worker.stop()
             self._worker.wait()
+            self._collecting.stop()
+            garbage.worker_ended()
             self._open.clear()
 
     def __enter__(self) -> Runner:
