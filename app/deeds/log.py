@@ -11,7 +11,7 @@ from app.operations import flag as flag_operations
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
 from app.ward.lane_words import strongest_flag
-from app.ward.moves import label_told_apart
+from app.ward.moves import labels_told_apart
 from app.window.shell import Shell
 from core.judgement.shapes import FlagFigure
 
@@ -128,7 +128,7 @@ class LogDeeds(FormDeeds):
         if feed is None or key is None or key not in feed.answers:
             return
         session = self.model.session
-        labels = {k: label_told_apart(feed.answers, k, session.moment(), session.zone) for k in feed.answers}
+        labels = labels_told_apart(feed.answers, session.moment(), session.zone)
         dialog = CorrectDialog(
             self.model, feed.answers[key].record, labels, self.window.reader, self.window.theme, self.window
         )

@@ -9,6 +9,7 @@ from app.deeds.policy import PolicyDeeds
 from app.deeds.ward import WardDeeds
 from app.operations.outcome import Outcome
 from app.session.failure import Failure
+from app.ward.moves import labels_told_apart
 from app.window.shell import Shell
 from app.words import sentence
 from core.record.instant import MINUTE, Instant
@@ -130,7 +131,7 @@ class ReviewDeeds(ClosingDeeds):
         from app.telling.later_words import later_table
 
         answers = self.window.feed.answers if self.window.feed is not None else {}
-        labels = {key: a.figures.label for key, a in answers.items()}
+        labels = labels_told_apart(answers, self.model.session.moment(), self.model.session.zone)
         table = later_table(self._known, labels, self._known_at, self.window.reader)
         TableDialog(table, self.window.theme, self.window).open()
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 
 from PySide6.QtCore import QCoreApplication, QObject, Signal
 
@@ -13,6 +14,7 @@ from app.operations.outcome import Outcome
 from app.session.model import SessionModel
 from app.session.state import Changed, What
 from app.ward.feed import WardFeed
+from app.ward.moves import label_told_apart
 from core.record.hindsight import Hindsight
 from core.record.message import RecordError
 
@@ -83,16 +85,17 @@ class EpisodeFeed(QObject):
         key = self._model.session.selection
         on_ward = self._ward.on_ward(key) if key is not None else None
         if key is not None and on_ward is not None:
-            record = self._ward.answers[key].record
+            record, session = self._ward.answers[key].record, self._model.session
+            called = label_told_apart(self._ward.answers, key, session.moment(), session.zone)
             self.refreshed.emit(
                 EpisodeOnScreen(
                     record,
-                    on_ward.figures,
+                    replace(on_ward.figures, label=called),  # its page and map may not be taken for the other's
                     on_ward.course,
                     self._ward.policy,
                     self.panels(),
                     self._gas_unit,
-                    self._model.session.is_live,
+                    session.is_live,
                     self._later.get(key, ()),
                 )
             )

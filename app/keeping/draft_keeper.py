@@ -102,13 +102,12 @@ class DraftKeeper(QObject):
         answer = self._o.feed.answers.get(fact.get("episode", ""))
         if answer is None or self._o.strip.line.text():
             return
-        self._o.model.select(fact["episode"])
-        self._o.strip.set_patient(answer.record, answer.figures.label, self._o.model.session.zone, "mmHg")
+        self._o.model.select(fact["episode"])  # the strip follows, in the units of this window
         self._o.strip.set_text(fact.get("line", ""))
         self._keep_line()
         for name in found:
             self._o.model.ask(operations.keep, Draft(name, None), done=self._done, failed=self._failed)
-        self.recovered.emit(answer.figures.label)
+        self.recovered.emit(self._o.strip.whom.text())
 
     def _done(self, _outcome: Outcome[None]) -> None:
         """Kept."""

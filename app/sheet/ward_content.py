@@ -52,6 +52,8 @@ class WardWriter(SheetWriter):
 
     def _see_first(self) -> str:
         first = self._h.shift.first
+        if not self._h.shift.episodes:
+            return tr("No episode: nothing is logged, so nothing is judged.")
         if first is None or first.now.concern.why is None:
             return tr("No episode stands out: no open flag, nothing overdue.")
         return f"{first.now.label}: {sentence(first.now.concern.why, self._reader)}"

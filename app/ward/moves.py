@@ -56,10 +56,20 @@ def label_told_apart(answers: Mapping[str, EpisodeAnswer], key: str, now: Instan
     return told_apart(answers[key].figures, [a.figures for a in answers.values()], now, zone)
 
 
+def labels_told_apart(answers: Mapping[str, EpisodeAnswer], now: Instant, zone: str) -> dict[str, str]:
+    """What every episode is called, by its key: as `label_told_apart`."""
+    ward = [a.figures for a in answers.values()]
+    apart = what_tells_apart(ward, now, zone)
+    return {f.episode: _with(f.label, apart.get(f.episode)) for f in ward}
+
+
 def told_apart(figures: EpisodeFigures, ward: Sequence[EpisodeFigures], now: Instant, zone: str) -> str:
     """The label of an episode, and where others of the ward share it, what tells it from them."""
-    apart = what_tells_apart(ward, now, zone).get(figures.episode)
-    return figures.label if apart is None else f"{figures.label} ({apart})"
+    return _with(figures.label, what_tells_apart(ward, now, zone).get(figures.episode))
+
+
+def _with(label: str, apart: str | None) -> str:
+    return label if apart is None else f"{label} ({apart})"
 
 
 def what_tells_apart(ward: Sequence[EpisodeFigures], now: Instant, zone: str) -> dict[str, str]:

@@ -66,20 +66,27 @@ class SeeFirst(QFrame):
         self._row.setContentsMargins(theme.px(16), margin, theme.px(12), margin)
 
     def show_first(self, key: str, label: str, why: str, tier: Tier | None) -> None:
-        """Say whom to see first; an empty key says that nobody stands out."""
+        """Say whom to see first, and why."""
+        self._say(key, self.tr("See first: {label}").format(label=label), why, tier)
+        self._open.setAccessibleName(self.tr("Open {label}").format(label=label))
+
+    def show_nobody(self, *, empty: bool) -> None:
+        """Say that nobody stands out; of an `empty` ward that nobody is on it, for nothing was judged there."""
+        if empty:
+            self._say("", self.tr("No episode"), self.tr("Nothing is logged here, so nothing is judged."), None)
+        else:
+            told = self.tr("No open flag and nothing overdue. This is no proof that all is well.")
+            self._say("", self.tr("Nobody stands out"), told, None)
+
+    def _say(self, key: str, title: str, why: str, tier: Tier | None) -> None:
         self._key = key
         self._sign.setVisible(tier is not None)
         if tier is not None:
             self._sign.tier = tier
             self._sign.update()
         self._open.setVisible(bool(key))
-        if key:
-            self._title.setText(inert(self.tr("See first: {label}").format(label=label)))
-            self._why.setText(inert(why))
-            self._open.setAccessibleName(self.tr("Open {label}").format(label=label))
-        else:
-            self._title.setText(inert(self.tr("Nobody stands out")))
-            self._why.setText(inert(self.tr("No open flag and nothing overdue. This is no proof that all is well.")))
+        self._title.setText(inert(title))
+        self._why.setText(inert(why))
         self.setAccessibleName(self.text())
 
     @property

@@ -230,10 +230,12 @@ class WardView(QWidget):
     def _elsewhere(self) -> str:
         """That the episode in hand is not on the screen: whoever types must not think of another."""
         held = self._by_key.get(self._in_hand)
-        if held is None or not self.shown_keys():
+        content = self._content
+        if held is None or content is None or not self.shown_keys():
             return ""
         told = self.tr("{label} is in hand and not shown. Enter takes the first lane.")
-        return told.format(label=held.figures.label)
+        ward = [e.figures for e in content.episodes]
+        return told.format(label=told_apart(held.figures, ward, content.as_of, content.zone))
 
     def _take_first(self) -> None:
         """Enter in the search: the first that was found is taken in hand, unless one of the found is already."""
@@ -264,7 +266,7 @@ class WardView(QWidget):
         assert self._content is not None
         top = first_to_see([e.figures for e in self._content.episodes])
         if top is None:
-            self.first.show_first("", "", "", None)
+            self.first.show_nobody(empty=not self._content.episodes)
             return
         flag = strongest_flag(top)
         why = sentence(top.concern.why, words.reader) if top.concern.why is not None else words.lane_sentence(top)

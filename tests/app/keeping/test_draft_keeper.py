@@ -11,6 +11,7 @@ from app.session.clock import still
 from app.session.model import SessionModel
 from app.session.runner import Runner
 from app.session.state import Session
+from app.strip.log_strip import LogStrip
 from app.window.main import MainWindow
 from storage.store import Store
 from tests.support.crashing import crash_while
@@ -31,6 +32,23 @@ def typed():
 def drafts(path):
     with Store.open(path, read_only=True) as store:
         return {n: json.loads(t) for n, t in store.drafts().items()}
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="ends a program as POSIX does")
+def test_what_is_put_back_is_read_in_the_unit_of_this_window(qtbot, tmp_path, monkeypatch):
+    path = make_store(tmp_path / "ward.luffmark")
+    crash_while(TYPED.replace("22/6 3", "ph 7.30 co2 8.1"), path)
+    units, of_strip = set(), LogStrip.set_patient
+
+    def heard(strip, record, label, zone, gas_unit, **more):
+        units.update({gas_unit} if record is not None else set())
+        of_strip(strip, record, label, zone, gas_unit, **more)
+
+    monkeypatch.setattr(LogStrip, "set_patient", heard)
+    with open_window(qtbot, path, preferences=Preferences(cautions_seen=True, gas_unit="kPa")) as window:
+        until(qtbot, lambda: window.strip.line.text() == "ph 7.30 co2 8.1")
+        until(qtbot, lambda: "8.1 kPa" in window.strip.plain())
+        assert units == {"kPa"}  # at no moment another
 
 
 @pytest.mark.skipif(sys.platform == "win32", reason="ends a program as POSIX does")

@@ -206,6 +206,13 @@ def test_a_shift_that_ends_after_the_record_says_so_and_its_chart_ends_there(nig
     assert dict(page.support)["Record"].startswith("nothing logged since 05:")
 
 
+def test_of_an_empty_ward_nothing_is_said_to_be_in_order(tmp_path: Path) -> None:
+    with Store.create(tmp_path / "w.luffmark", now=NOW - 9 * HOUR) as store:
+        made = operations.prepare(store, "AB", NOW, operations.HandoverRequest(NOW - 8 * HOUR, NOW)).value
+    told = sheet_content(made, Reader()).ward.see_first
+    assert told == "No episode: nothing is logged, so nothing is judged."
+
+
 def test_a_shift_that_ends_now_needs_no_such_words(content: SheetContent) -> None:
     assert content.ward.quiet == ""
     assert "Record" not in dict(content.episodes[0].support)

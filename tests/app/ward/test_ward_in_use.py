@@ -38,6 +38,12 @@ def test_two_patients_of_one_bed_are_told_apart_wherever_a_line_is_logged(qtbot,
     assert window.strip.whom.text() == "Bed 7 (from 00:00)"
     window.select("bed-7-second")
     assert window.strip.whom.text() == "Bed 7 (bed-7-second)"
+    window.show_page("episode")
+    assert window.pages.episode.title.text() == "Bed 7 (bed-7-second)"
+    assert "Bed 7 (bed-7-second)" in window.pages.episode.stack.spec.name
+    window.show_page("map")
+    assert "Bed 7 (bed-7-second)" in window.pages.map.title.text()
+    window.show_page("ward")
     type_line(qtbot, window, "rr 30")
     until(qtbot, lambda: "Recorded for Bed 7 (bed-7-second)" in window.strip.plain())
     window.actions_by_key["correct"].trigger()
