@@ -3,7 +3,8 @@
     record -> gases -> anchors and responses -> scores -> trends -> markers -> due items -> concern and levers
 
 Each stage reads the context that the earlier ones filled and makes a new one. The stages up to the scores may be
-kept (`stage_cache`): they change only when the record does or a window opens or closes.
+kept (`stage_cache`): they change only when the record does or a window opens or closes. So may the spells of markers
+that read nothing that moves with the clock.
 """
 
 from __future__ import annotations
@@ -103,7 +104,7 @@ def episode_figures(
     `cache` keeps the early stages of an unchanged record; the figures are the same with and without one.
     """
     ctx = judged(episode, as_of, policy, cache)
-    seen = Observed(ctx)
+    seen = Observed(ctx) if cache is None else cache.observed(ctx)
     flags = evaluate(ctx, seen)
     due = due_items(ctx, flags, seen)
     walls = barriers(tuple(step.at for a in ctx.anchors for step in a.steps), ctx.support)

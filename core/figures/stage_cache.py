@@ -1,9 +1,9 @@
-"""The early stages, kept while nothing that they read has changed.
+"""The early stages, and the spells of markers that no clock moves, kept while nothing that they read has changed.
 
 Gases, anchors, responses and scores depend on the record up to a moment, and on the moment itself only where a
 window opens or closes. So what they found for one moment stands for later ones until something new has happened
-in the record, or the clock passes such an edge: `valid_until`. Trends, markers and due items move with the
-clock and are computed anew.
+in the record, or the clock passes such an edge: `valid_until`. Trends and due items move with the clock and are
+computed anew, and so is every marker that read what moves (`core.judgement.watched_context`).
 """
 
 from __future__ import annotations
@@ -14,6 +14,7 @@ from dataclasses import dataclass, replace
 
 from core.judgement.context import Context
 from core.judgement.course import MINUTES
+from core.judgement.markers.observed import Observed
 from core.judgement.policy import Policy
 from core.record.episode import Episode
 from core.record.instant import MINUTE, Instant
@@ -38,9 +39,17 @@ class StageCache:
     def __init__(self, most: int = 128) -> None:
         self._most = most
         self._kept: OrderedDict[str, _Kept] = OrderedDict()
+        self._seen: dict[str, Observed] = {}
 
     def __len__(self) -> int:
         return len(self._kept)
+
+    def observed(self, ctx: Context) -> Observed:
+        """What markers look at; what they found at an earlier moment is kept where no clock moves it."""
+        earlier = self._seen.get(ctx.episode.key)
+        seen = Observed(ctx) if earlier is None else earlier.later(ctx)
+        self._seen[ctx.episode.key] = seen
+        return seen
 
     def early_stages(self, episode: Episode, as_of: Instant, policy: Policy, compute: Compute) -> Context:
         """The context of the early stages, taken from the cache where it still stands.
@@ -57,7 +66,8 @@ class StageCache:
         self._kept[episode.key] = _Kept(episode, policy.hash, lengths, as_of, edge, context)
         self._kept.move_to_end(episode.key)
         if len(self._kept) > self._most:
-            self._kept.popitem(last=False)
+            gone, _ = self._kept.popitem(last=False)
+            self._seen.pop(gone, None)
         return context
 
 

@@ -52,13 +52,11 @@ class _Met:
 
 def spells_of(seen: Observed, marker: Marker, rule: MarkerRule) -> list[Spell]:
     """The spells of one marker: flicker joined, ended with support, outside its population only as a remark."""
-    found = list(marker.find(seen, rule))
-    if not marker.judges_population and rule.population != "any":
-        found = [replace(s, outside_population=not inside(seen, rule.population, s.since)) for s in found]
-    found = [s for s in found if rule.outside == "remark" or not s.outside_population]
+    shipped = rule is seen.policy.markers.get(marker.key)  # another rule is tried out: not kept
+    found = seen.once(lambda s: _found(s, marker, rule), marker.key) if shipped else _found(seen, marker, rule)
     if not found:
         return []
-    spells = without_flicker(united(found), int(rule.gap_min * MINUTE), seen.as_of)
+    spells = without_flicker(found, int(rule.gap_min * MINUTE), seen.as_of)
     end = seen.support.end
     if end is None or end > seen.as_of or marker.after_end:
         return spells
@@ -66,6 +64,14 @@ def spells_of(seen: Observed, marker: Marker, rule: MarkerRule) -> list[Spell]:
         return _until(end, spells)
     after = [s for s in spells if newest_of(s.evidence) >= end]
     return sorted([*_until(end, (s for s in spells if s not in after)), *after], key=lambda s: s.since)
+
+
+def _found(seen: Observed, marker: Marker, rule: MarkerRule) -> list[Spell]:
+    """Where a marker was met; outside its population only as a remark."""
+    found = list(marker.find(seen, rule))
+    if not marker.judges_population and rule.population != "any":
+        found = [replace(s, outside_population=not inside(seen, rule.population, s.since)) for s in found]
+    return united(s for s in found if rule.outside == "remark" or not s.outside_population)
 
 
 def _until(end: Instant, spells: Iterable[Spell]) -> list[Spell]:

@@ -44,6 +44,10 @@ class Series:
         """What had happened by `at`, that moment included."""
         return self.cut(slice(0, int(self.t.searchsorted(at, side="right"))))
 
+    def since(self, start: Instant) -> Series:
+        """From `start` on, that moment included."""
+        return self.cut(slice(int(self.t.searchsorted(start)), None))
+
     def between(self, start: Instant, end: Instant) -> Series:
         """From `start` to `end`, both included."""
         i, j = self.t.searchsorted([start, end + 1])

@@ -79,7 +79,7 @@ def _by_machine(seen: Observed, rule: MarkerRule, counted: Series, relation: str
         if not _past(seen.machine(channel).v, limit, relation).any() or seen.support.start is None:
             continue
         worn = seen.worn_machine(channel)
-        worn = worn.between(seen.support.start + int(rule.limits["after_min"] * MINUTE), seen.as_of)
+        worn = worn.since(seen.support.start + int(rule.limits["after_min"] * MINUTE))
         high = _past(worn.v, limit, relation) & ~_counted_lower(seen, worn, counted, limit, relation)
         for s in crossings(worn.t, high.astype(np.float64), 0.5, n, m):
             i, j = _span(worn, s)

@@ -3,11 +3,10 @@
 from __future__ import annotations
 
 from bisect import bisect_right
-from collections.abc import Callable
-from dataclasses import dataclass, field
-from functools import cached_property
+from collections.abc import Callable, Hashable
+from dataclasses import dataclass
 from math import isnan
-from typing import Any, TypeVar
+from typing import Any, Final, Generic, TypeVar
 
 import numpy as np
 
@@ -18,6 +17,7 @@ from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.response_shapes import JudgedGas, ResponseFigure, SinceStart
 from core.judgement.shapes import GasFigure
 from core.judgement.vitals_near import Found, VitalsNear
+from core.judgement.watched_context import stands_with, watched
 from core.record.channels import HYPERCAPNIC_RISK
 from core.record.episode import Episode, Series
 from core.record.instant import MINUTE, Instant
@@ -26,6 +26,8 @@ from core.record.settings import ROOM_AIR, SettingsInForce, Steps
 from core.record.support import Break, SupportTime
 
 Finding = TypeVar("Finding")
+_NO_BOUND: Final = 2**62
+"""Later than any moment: the record itself holds nothing later than `as_of`."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,20 +38,67 @@ class Attributed:
     judged: JudgedGas
 
 
-@dataclass(frozen=True)
-class Observed:
-    """The context of one episode and what markers find in it. Holds nothing later than `as_of`."""
+@dataclass(frozen=True, slots=True)
+class _Found:
+    value: Any
+    moved: bool
+    """Whether something that moves with the clock was read to find it."""
 
-    ctx: Context
-    _found: dict[Callable[[Any], Any], Any] = field(default_factory=dict)
-    _series: dict[tuple[str, str], Series] = field(default_factory=dict)
 
-    def once(self, find: Callable[[Observed], Finding]) -> Finding:
-        """What `find` gives for this record, computed the first time only: several markers share it."""
-        if find not in self._found:
-            self._found[find] = find(self)
-        found: Finding = self._found[find]
+class found_once(Generic[Finding]):  # noqa: N801 - used as a decorator, like `cached_property`
+    """What is found in a record once, as `Observed.once` finds it, read as an attribute."""
+
+    def __init__(self, find: Callable[[Any], Finding]) -> None:
+        self._find = find
+        self._name = find.__name__
+        self.__doc__ = find.__doc__
+
+    def __get__(self, seen: Observed, owner: type) -> Finding:
+        found: Finding = seen.once(self._find)
+        if not seen.has_moved(self._find):
+            seen.__dict__[self._name] = found  # the next read of it is as fast as any attribute
         return found
+
+
+class Observed:
+    """The context of one episode and what markers find in it. Holds nothing later than `as_of`.
+
+    What is found without reading what moves with the clock is kept for later moments (`later`).
+    """
+
+    def __init__(self, ctx: Context) -> None:
+        self.ctx = watched(ctx)
+        self._found: dict[Hashable, _Found] = {}
+        self._series: dict[tuple[str, str], Series] = {}
+
+    def later(self, ctx: Context) -> Observed:
+        """The same record at another moment, with what was found under a name and no clock moves.
+
+        Only that: what markers share on the way to it holds samples, and would keep them in memory twice.
+        """
+        made = Observed(ctx)
+        if stands_with(made.ctx, self.ctx):
+            made._found.update((k, f) for k, f in self._found.items() if isinstance(k, str) and not f.moved)
+        return made
+
+    def once(self, find: Callable[[Observed], Finding], name: str | None = None) -> Finding:
+        """What `find` gives for this record, computed the first time only: several markers share it.
+
+        `name`: what it is kept by for later moments; without it, it is kept for this one.
+        """
+        key = name or find
+        known = self._found.get(key)
+        if known is None:
+            before, self.ctx.moved = self.ctx.moved, False
+            known = self._found[key] = _Found(find(self), self.ctx.moved)
+            self.ctx.moved = before
+        self.ctx.moved |= known.moved
+        found: Finding = known.value
+        return found
+
+    def has_moved(self, key: Hashable) -> bool:
+        """Whether what was found under `key` (see `once`) moves with the clock."""
+        return self._found[key].moved
 
     @property
     def episode(self) -> Episode:
@@ -76,17 +125,17 @@ class Observed:
         """The moment of the figures."""
         return self.ctx.as_of
 
-    @cached_property
+    @found_once
     def first_at(self) -> Instant | None:
         """The first moment that anything was logged for."""
         return self.episode.first_at
 
-    @cached_property
+    @found_once
     def gases(self) -> tuple[GasFigure, ...]:
         """Arterial and capillary gases, by time: those whose pH and PCO2 judge."""
         return tuple(g for g in self.ctx.gases if g.site in STANDS_FOR_ARTERIAL)
 
-    @cached_property
+    @found_once
     def on_support_gases(self) -> tuple[GasFigure, ...]:
         """Those drawn on support."""
         return tuple(g for g in self.gases if self.drawn_on_support(g))
@@ -99,22 +148,22 @@ class Observed:
         after = gas.at // MINUTE > start // MINUTE
         return after or (not self.support.start_recorded and gas.at >= start)
 
-    @cached_property
+    @found_once
     def newest_gas(self) -> GasFigure | None:
         """The newest sample of any site."""
         return self.ctx.gases[-1] if self.ctx.gases else None
 
-    @cached_property
+    @found_once
     def doubtful_gases(self) -> frozenset[Instant]:
         """The moments of the samples that hold what nobody confirmed, or what cannot belong together."""
         return frozenset(g.at for g in self.ctx.gases if g.in_doubt)
 
-    @cached_property
+    @found_once
     def by_moment(self) -> dict[Instant, GasFigure]:
         """The arterial and capillary gases by their moment."""
         return {g.at: g for g in self.gases}
 
-    @cached_property
+    @found_once
     def _gas_moments(self) -> list[Instant]:
         return [g.at for g in self.gases]
 
@@ -142,7 +191,7 @@ class Observed:
         i, j = bisect_right(self._gas_moments, gas.at - within - 1), bisect_right(self._gas_moments, gas.at - 1)
         return self.gases[i:j]
 
-    @cached_property
+    @found_once
     def start_baseline(self) -> GasFigure | None:
         """The gas that the start of support is judged against."""
         first = self.ctx.responses[0] if self.ctx.responses else None
@@ -150,7 +199,7 @@ class Observed:
             return None
         return next((g for g in self.gases if g.at == first.baseline_at), None)
 
-    @cached_property
+    @found_once
     def attributed(self) -> dict[Instant, list[Attributed]]:
         """By gas: the anchors whose effect it judges."""
         found: dict[Instant, list[Attributed]] = {}
@@ -160,12 +209,12 @@ class Observed:
                     found.setdefault(judged.at, []).append(Attributed(response, judged))
         return found
 
-    @cached_property
+    @found_once
     def since_start(self) -> dict[Instant, SinceStart]:
         """By gas: how it compares with the start."""
         return {j.at: j.since_start for r in self.ctx.responses for j in r.gases}
 
-    @cached_property
+    @found_once
     def vitals(self) -> VitalsNear:
         """Rate and SpO2 near a moment."""
         return VitalsNear(self.episode, self.policy)
@@ -180,8 +229,8 @@ class Observed:
         return None
 
     def rate_near(self, at: Instant) -> Found | None:
-        """The respiratory rate nearest to a moment, not later than `as_of`."""
-        return self.vitals.rate(at, 0, self.as_of)
+        """The respiratory rate nearest to a moment, before or after it."""
+        return self.vitals.rate(at, 0, _NO_BOUND)
 
     def series(self, channel: str) -> Series:
         """The known values of a channel."""
@@ -218,7 +267,7 @@ class Observed:
         wanted = found.spot if part == "spots" else ~found.spot
         return found if wanted.all() else found.cut(wanted)
 
-    @cached_property
+    @found_once
     def suspected_breaks(self) -> tuple[Break, ...]:
         """Breaks that nobody logged."""
         return probable_breaks(self.ctx)
@@ -237,7 +286,7 @@ class Observed:
             inside &= times < end
         return inside & ~self.off_mask(times)
 
-    @cached_property
+    @found_once
     def risk_since(self) -> Instant | None:
         """Since when hypercapnic risk is known: by indication from the beginning, else by a gas that shows it."""
         if self.ctx.indication in HYPERCAPNIC_RISK:

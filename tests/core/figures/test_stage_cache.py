@@ -1,16 +1,24 @@
 """Figures are the same with and without kept stages, whatever the clock and the record do in between."""
 
 from functools import cache
+from random import Random
 
+import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from core.figures.episode_figures import episode_figures
+from core.figures.episode_figures import episode_figures, judged
 from core.figures.stage_cache import StageCache
+from core.judgement.flags import evaluate
 from core.judgement.policy import read_policy, shipped_policy, shipped_text
-from core.record.instant import MINUTE
+from core.record.episode import build_episode
+from core.record.instant import MINUTE, SECOND
+from core.record.knowledge import standing
+from core.record.samples import DeviceSamples
 from tests.support.log import device, episode, moment
+from tests.support.long_episode import END, long_episode
+from tests.support.random_rows import ZERO, entries_of, thrown
 
 NIGHT = """
 00:30 label Bed 4
@@ -46,6 +54,44 @@ def test_kept_stages_change_no_figure(minutes):
     for m in minutes:
         at = moment("00:30") + m * MINUTE
         assert episode_figures(record(), at, shipped_policy(), kept) == fresh(at)
+
+
+CHANNELS = {"rr_total": (8, 40), "vte": (150, 900), "leak": (0, 70), "spo2": (80, 99), "mv": (2, 14)}
+STEPS = (1, 60, 61, 599, 1800, 3600, 7201, 14400, -60)
+
+
+def thrown_episode(dice, rows):
+    """The rows with device samples by the minute over some of their time."""
+    blocks = []
+    for channel in dice.sample(sorted(CHANNELS), 3):
+        first, length = dice.randint(-30, 300), dice.randint(10, 240)
+        t = np.array([ZERO + (first + i) * MINUTE for i in range(length)], np.int64)
+        low, high = CHANNELS[channel]
+        spread = dice.choice((1, (high - low) / 2))
+        v = np.clip(dice.uniform(low, high) + np.array([dice.gauss(0, spread) for _ in t]), low, high)
+        blocks.append(DeviceSamples("E", channel, "device", t, v.round(1)))
+    return build_episode("E", standing(entries_of(rows)), blocks)
+
+
+@settings(max_examples=30, deadline=None)
+@given(st.integers(0, 10**9))
+def test_what_was_kept_is_what_would_be_found_anew_at_every_tick(seed):
+    dice, (rows, _) = Random(seed), thrown(seed)
+    record, kept, policy = thrown_episode(dice, rows), StageCache(), shipped_policy()
+    at = ZERO + dice.choice(sorted({m for m, _, _ in rows})[-3:]) * MINUTE
+    for _ in range(8):
+        assert episode_figures(record, at, policy, kept) == episode_figures(record, at, policy), seed
+        at += dice.choice(STEPS) * SECOND
+
+
+def test_what_no_clock_moves_is_found_once():
+    record, kept, at = long_episode(), StageCache(), END
+    first = kept.observed(judged(record, at, shipped_policy(), kept))
+    evaluate(first.ctx, first)
+    later = kept.observed(judged(record, at + SECOND, shipped_policy(), kept))
+    assert not later.has_moved("spo2_below_range")
+    assert later.once(lambda _: [], "spo2_below_range") is first.once(lambda _: [], "spo2_below_range")
+    assert later.once(lambda _: "anew", "gas_overdue") == "anew"
 
 
 def test_early_stages_are_computed_once_while_nothing_happens():
