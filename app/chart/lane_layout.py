@@ -60,7 +60,7 @@ class LaneGeometry:
     @property
     def flag_top(self) -> float:
         """Where pennants begin, under the lane's top."""
-        return (2 if self.close else 4) * self.unit
+        return (3 if self.close else 4) * self.unit  # clear of the frame of the lane in hand
 
     @property
     def words(self) -> float:

@@ -328,7 +328,8 @@ class LanePainter:
         else:
             x, room = x + g.state, g.due - pad - theme.px(28)
         if lane.tier is not None:
-            pennant(painter, theme, lane.tier, x + theme.px(1), y + line - theme.px(3), theme.px(14), lane.closed)
+            size = theme.px(14)
+            pennant(painter, theme, lane.tier, x + theme.px(1), y + (line + size) / 2, size, lane.closed)
         self._right_words(painter, lane.flag_word, QRectF(x + theme.px(20), y, room, line), ink, bold=True)
         self._draw_due(painter, lane, x, y + line, room, line)
 
