@@ -55,12 +55,12 @@ class LaneGeometry:
     @property
     def flag(self) -> float:
         """Height of a pennant; its top is at `flag_top`."""
-        return (10 if self.close else 16) * self.unit
+        return (9.5 if self.close else 16) * self.unit
 
     @property
     def flag_top(self) -> float:
         """Where pennants begin, under the lane's top."""
-        return (3 if self.close else 4) * self.unit  # clear of the frame of the lane in hand
+        return (2.75 if self.close else 4) * self.unit  # clear of the frame of the lane in hand
 
     @property
     def words(self) -> float:
