@@ -104,6 +104,6 @@ class MakingDeeds(OpeningDeeds):
 
     def _lead_told(self, _result: int) -> None:
         self.lead_dialog = None
-        if self._then_take_in and self.window.model is not None:
-            self._then_take_in = False
+        wanted, self._then_take_in = self._then_take_in, False
+        if wanted and self.window.model is not None:
             self.take_in_wanted.emit()

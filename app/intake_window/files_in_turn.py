@@ -6,6 +6,7 @@ What a person answered for one table is proposed for the next of the same column
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -29,6 +30,8 @@ class FilesInTurn(QObject):
         self._model, self._window, self._episodes = model, window, episodes
         self._waiting, self._count = list(paths), len(paths)
         self._given: ReadRequest | None = None
+        self._named: Mapping[str, str] = {}
+        """What was said of names in a table's own column: the next file of the same night names them too."""
 
     def begin(self) -> QDialog:
         """Show the first file."""
@@ -52,15 +55,24 @@ class FilesInTurn(QObject):
 
     def _answered(self, request: ReadRequest) -> None:
         self._given = request
+        request = replace(request, episodes=self._episodes, patients=self._named)
         self._read(request)
 
     def _read(self, request: ReadRequest) -> QDialog:
         from app.dialogs.intake import IntakeDialog
 
         dialog = IntakeDialog(self._model, request, self._window.reader, self._window.theme, self._window)
-        dialog.taken.connect(self._go_on)
+        dialog.taken.connect(self._taken)
         dialog.rejected.connect(self._go_on)
         return self._opened(dialog, request.path)
+
+    def _taken(self) -> None:
+        from app.dialogs.intake import IntakeDialog
+
+        dialog = self.sender()
+        if isinstance(dialog, IntakeDialog):
+            self._named = {**self._named, **dialog.request.patients}
+        self._go_on()
 
     def _opened(self, dialog: QDialog, path: Path) -> QDialog:
         if self._count > 1:
@@ -71,7 +83,7 @@ class FilesInTurn(QObject):
         return dialog
 
     def _go_on(self) -> None:
-        if not self._waiting:
+        if not self._waiting or self._window.model is not self._model:  # the store may have been closed meanwhile
             self.deleteLater()
             return
         self._show(self._waiting.pop(0))

@@ -28,7 +28,7 @@ from app.ward.view import WardContent
 from app.window.action_table import DEEDS
 from app.window.actions import fill_menus, make_actions
 from app.window.first_page import FirstPage
-from app.window.opened import Opened, let_go
+from app.window.opened import Opened, leave_dialogs, let_go
 from app.window.page_turner import PageTurner
 from app.window.pages import Pages
 from app.window.progress_line import ProgressLine
@@ -148,6 +148,7 @@ class MainWindow(Shell):
         self.first = page
         self._column.addWidget(page)
         self.setWindowTitle(self.keeping.title(None))
+        self._set_ticks()
 
     def _cautions_read(self) -> None:
         self.prefer(cautions_seen=True)
@@ -312,7 +313,8 @@ class MainWindow(Shell):
         if self.opened is None:
             return
         o, self.opened = self.opened, None
-        self.keeping.closing()
+        self.keeping.closing()  # what is half typed in a form is kept before the form is left
+        leave_dialogs(self)
         self.progress.stand_over(None)
         o.model.close()
         for part in (o.episode_feed, o.feed, o.model):

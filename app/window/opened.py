@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from PySide6.QtWidgets import QLayoutItem
+from PySide6.QtWidgets import QDialog, QLayoutItem, QWidget
+from shiboken6 import isValid
 
 from app.episode.feed import EpisodeFeed
 from app.keeping.notice_strip import NoticeStrip
@@ -45,3 +46,10 @@ def let_go(item: QLayoutItem | None) -> None:
     elif layout is not None:
         while layout.count():
             let_go(layout.takeAt(0))
+
+
+def leave_dialogs(window: QWidget) -> None:
+    """Leave every dialog of a window, those that refuse it too: what they show and ask goes with the store."""
+    for dialog in window.findChildren(QDialog):
+        if isValid(dialog) and dialog.isVisible():
+            QDialog.reject(dialog)
