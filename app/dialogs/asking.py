@@ -74,7 +74,7 @@ class AskingDialog(FittedDialog):
         super().showEvent(event)
         self._fields_first()
         self.grow()
-        QTimer.singleShot(0, self.grow)  # once more when the style has told every part its size
+        QTimer.singleShot(0, self, self.grow)  # once more when the style has told every part its size
 
     def _fields_first(self) -> None:
         """Tab goes through the fields, then to the buttons, and begins at the first field."""

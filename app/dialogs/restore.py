@@ -90,7 +90,7 @@ class RestoreDialog(FileWork):
         if failure.message.key == "people.wrong_pin":
             self.pin.clear()
             self.go.setEnabled(False)
-            QTimer.singleShot(WAIT_MS, self._may_try_again)
+            QTimer.singleShot(WAIT_MS, self, self._may_try_again)
 
     def _may_try_again(self) -> None:
         self.go.setEnabled(self.told.isHidden())

@@ -121,6 +121,7 @@ class Lock(QObject):
         self._window.menuBar().show()
         for dialog, modality in self._dialogs:
             if isValid(dialog):
+                dialog.finished.disconnect(self._has_ended)
                 dialog.setWindowModality(modality)
                 dialog.show()
         if self._focus is not None and isValid(self._focus) and self._focus.isVisible():
@@ -132,14 +133,20 @@ class Lock(QObject):
             return
         if isinstance(widget, QDialog):
             self._dialogs.append((widget, widget.windowModality()))
+            widget.finished.connect(self._has_ended)
             widget.hide()
         elif widget.windowType() in (Qt.WindowType.Popup, Qt.WindowType.ToolTip):
             widget.hide()  # a tip's own end would leave it there for a while
 
+    def _has_ended(self, _result: int) -> None:
+        """What a dialog had asked for was answered while nobody saw it: it is over, and comes back no more."""
+        ended = self.sender()
+        self._dialogs = [kept for kept in self._dialogs if kept[0] is not ended]
+
     def eventFilter(self, watched: QObject, event: QEvent) -> bool:
         """A dialog that some late answer opens stays out of sight too."""
         if event.type() == QEvent.Type.Show and self.is_locked and self._comes_late(watched):
-            QTimer.singleShot(0, self._hide_late)
+            QTimer.singleShot(0, self, self._hide_late)
         return False
 
     def _comes_late(self, shown: QObject) -> bool:

@@ -228,7 +228,7 @@ class StatisticsView(QWidget):
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         if self.found is not None:
-            QTimer.singleShot(0, self._fit_rows)
+            QTimer.singleShot(0, self, self._fit_rows)  # nothing where the page is gone by then
 
     # what the person does
 

@@ -114,6 +114,28 @@ def test_what_is_typed_outlives_the_lock_dialogs_too(qtbot, with_people):
         dialog.reject()
 
 
+def test_a_dialog_whose_answer_came_while_it_was_hidden_is_over(qtbot, on_bed_7):
+    """A correction is sent and the screen is hidden before it is answered: what was done is not offered again."""
+    window = on_bed_7
+    window.actions_by_key["correct"].trigger()
+    dialog = window.doers.log.form
+    dialog.list.setCurrentItem(dialog.list.topLevelItem(0))
+    dialog.act.setCurrentIndex(1)
+    dialog.reason.setText("read off the wrong monitor")
+    settled(qtbot, window)
+    head = window.model.session.head
+    dialog.submit()
+    window.keeping.lock_now()
+    until(qtbot, lambda: window.model.session.head > head)
+    settled(qtbot, window)
+    qtbot.keyClick(window.keeping.lock.page, Qt.Key.Key_Space)
+    assert not window.keeping.lock.is_locked
+    assert not dialog.isVisible()
+    window.actions_by_key["correct"].trigger()
+    assert window.doers.log.form.isVisible()
+    window.doers.log.form.reject()
+
+
 def test_a_dialog_that_opens_late_stays_out_of_sight(qtbot, with_people):
     with open_window(qtbot, with_people) as window:
         sign_in(qtbot, window, "AB", PIN)
