@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import partial
 from typing import TYPE_CHECKING
 
 from app.deeds.doer import Doer
@@ -28,7 +29,9 @@ class DueDeeds(Doer):
             return
         focused = self._focused()
         chosen = focused if focused in items else items[0]
-        self.asking = CloseDueDialog(items, chosen, self.window.reader, self._close, self.window.theme, self.window)
+        key, window = self.model.session.selection or "", self.window
+        close = partial(self._close, key)  # whoever is in hand by then
+        self.asking = CloseDueDialog(self.label_of(key), items, chosen, window.reader, close, window.theme, window)
         self.asking.open()
 
     def _open_items(self) -> list[DueFigure]:
@@ -42,10 +45,10 @@ class DueDeeds(Doer):
         payload = getattr(QApplication.focusWidget(), "payload", None)
         return payload if isinstance(payload, DueFigure) else None
 
-    def _close(self, what: str, words: str, reason: str) -> None:
+    def _close(self, episode: str, what: str, words: str, reason: str) -> None:
         from app.operations import due
 
-        request = due.DueRequest(self.model.session.selection or "", what, words, reason)
+        request = due.DueRequest(episode, what, words, reason)
         failed = self.asking.failed if self.asking is not None else self.window.show_failure
         self.model.ask(due.close, request, done=self._closed, failed=failed)
 
@@ -55,4 +58,5 @@ class DueDeeds(Doer):
             self.asking.deleteLater()
             self.asking = None
         if self.window.strip is not None:
-            self.window.strip.take(outcome.value, self.tr("Your word on the due item is recorded."))
+            told = self.tr("Your word on the due item is recorded for {label}.")
+            self.window.strip.take(outcome.value, told.format(label=self.label_of(outcome.value.episode)))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 
 from app.deeds.due import DueDeeds
 from app.deeds.forms import FormDeeds
@@ -82,11 +83,13 @@ class LogDeeds(FormDeeds):
 
         flag = self._flag()
         if flag is not None:
-            self._settling = SettleDialog(flag, self.window.reader, self._settle, self.window.theme, self.window)
+            key, window = self.model.session.selection or "", self.window
+            settle = partial(self._settle, key)  # whoever is in hand by then
+            self._settling = SettleDialog(self.label_of(key), flag, window.reader, settle, window.theme, window)
             self._settling.open()
 
-    def _settle(self, flag: FlagFigure, reason: str) -> None:
-        request = flag_operations.FlagRequest(self.model.session.selection or "", flag.flag_id, reason)
+    def _settle(self, episode: str, flag: FlagFigure, reason: str) -> None:
+        request = flag_operations.FlagRequest(episode, flag.flag_id, reason)
         self.model.ask(flag_operations.settle, request, done=self._flag_settled, failed=self._settling.failed)
 
     def _flag_settled(self, outcome: Outcome[Recorded]) -> None:
@@ -95,8 +98,8 @@ class LogDeeds(FormDeeds):
         self._flag_said(outcome)
 
     def _flag_said(self, outcome: Outcome[Recorded]) -> None:
-        told = self.tr("Your word on the flag is recorded for {label}.").format(label=self.strip.whom.text())
-        self.strip.take(outcome.value, told)
+        told = self.tr("Your word on the flag is recorded for {label}.")
+        self.strip.take(outcome.value, told.format(label=self.label_of(outcome.value.episode)))
 
     def _flag(self) -> FlagFigure | None:
         """The flag that has the focus, else the one chosen on its lane, else the strongest open one."""

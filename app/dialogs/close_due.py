@@ -23,11 +23,11 @@ class CloseDueDialog(AskingDialog):
     """Hands the item's key, the word and the reason to `close`; `failed` shows a refusal."""
 
     def __init__(
-        self, items: Sequence[DueFigure], chosen: DueFigure, reader: Reader, close: Close, theme: Theme,
+        self, label: str, items: Sequence[DueFigure], chosen: DueFigure, reader: Reader, close: Close, theme: Theme,
         parent: QWidget | None = None,
     ) -> None:  # fmt: skip
         super().__init__("", "", theme, parent)
-        self.setWindowTitle(self.tr("Close due item"))
+        self.setWindowTitle(self.tr("Close due item, {label}").format(label=label))
         self.go.setText(self.tr("Record it"))
         self._items, self._reader, self._close = tuple(items), reader, close
         self.what = QComboBox()

@@ -21,10 +21,16 @@ class SettleDialog(AskingDialog):
     """Hands flag and reason to `settle`; `failed` shows a refusal."""
 
     def __init__(
-        self, flag: FlagFigure, reader: Reader, settle: Settle, theme: Theme, parent: QWidget | None = None
+        self,
+        label: str,
+        flag: FlagFigure,
+        reader: Reader,
+        settle: Settle,
+        theme: Theme,
+        parent: QWidget | None = None,
     ) -> None:
         super().__init__("", "", theme, parent)
-        self.setWindowTitle(self.tr("Settle flag"))
+        self.setWindowTitle(self.tr("Settle flag, {label}").format(label=label))
         self.go.setText(self.tr("Settle it"))
         self._flag, self._reader, self._settle = flag, reader, settle
         name, evidence = QLabel(marker_name(flag.marker, reader)), QLabel()

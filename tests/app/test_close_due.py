@@ -8,6 +8,8 @@ from pytestqt.qtbot import QtBot
 from app.episode.due_done import line_of
 from app.operations.due import NOT_NEEDED
 from app.words import Reader
+from core.record.entries import Action
+from storage.store import Store
 from tests.support.open_window import make_store, open_window, settled, until
 
 
@@ -57,3 +59,22 @@ def test_nothing_due_says_so(qtbot: QtBot, path: Path) -> None:
         window.doers.due.close()
         assert window.doers.due.asking is None
         assert window.strip.said.text() == "Nothing is due."
+
+
+def test_a_word_goes_to_the_patient_it_was_asked_for_whoever_is_in_hand_by_then(qtbot: QtBot, path: Path) -> None:
+    """Another window takes an episode back while its dialog stands there: the hand goes on, the word must not."""
+    with open_window(qtbot, path) as window:
+        window.select("bed-7")
+        settled(qtbot, window)
+        window.actions_by_key["close_due"].trigger()
+        asking = window.doers.due.asking
+        assert asking is not None
+        assert asking.windowTitle() == "Close due item, Bed 7"
+        window.model.select("bed-3")
+        asking.submit()
+        until(qtbot, lambda: window.doers.due.asking is None)
+        assert "recorded for Bed 7" in window.strip.plain()
+    with Store.open(path, read_only=True) as store:
+        said = {key: [e for e in store.entries(key) if e.action is Action.DUE] for key in ("bed-7", "bed-3")}
+    assert len(said["bed-7"]) == 1
+    assert said["bed-3"] == []

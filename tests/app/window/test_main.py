@@ -306,11 +306,14 @@ def test_a_flag_is_seen_and_settled_with_a_reason(qtbot, window):
     until(qtbot, lambda: state_of_flag(window, flag.flag_id) == ("seen", "AB"))
     qtbot.keyClick(window, Key.Key_F4)
     dialog = next(d for d in window.findChildren(SettleDialog) if d.isVisible())
+    assert dialog.windowTitle() == "Settle flag, Bed 7"
     dialog.go.click()
     assert dialog.wrong.text()
+    window.model.select("bed-3")  # as when another window takes an episode back: the word stays with its patient
     qtbot.keyClicks(dialog.reason, "intensivist told, ceiling agreed")
     dialog.go.click()
     until(qtbot, lambda: state_of_flag(window, flag.flag_id)[0] == "settled")
+    assert "recorded for Bed 7" in window.strip.plain()
     assert strongest(window).flag_id != flag.flag_id
     assert window.strip.can_undo
 
