@@ -131,7 +131,8 @@ def _about_files(intake: argparse.ArgumentParser) -> None:
     """What a person says of files that are not the log CSV."""
     intake.add_argument("--episode", default="", metavar="E", help="whose the file is, where it does not say")
     intake.add_argument("--patient", action="append", type=pair, default=[], metavar="ID=E",
-                        help="the episode of one identifier of a file of results; may be repeated")  # fmt: skip
+                        help="the episode of one identifier of a file of results, or of one name in the "
+                        "column of episodes of a table; may be repeated")  # fmt: skip
     intake.add_argument("--mapping", default="", metavar="NAME", help="how a table is read (see: luffmark mapping)")
     intake.add_argument("--leak", default="", metavar="WHAT", help="what leak means: unintentional, total, not known")
     intake.add_argument("--clock-shift", type=float, default=0.0, metavar="S",

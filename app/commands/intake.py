@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from app.commands.context import Context
-from app.look.formats import counted, plain
+from app.look.formats import counted, plain, some_of
 from app.operations import intake as operations
 from app.operations.outcome import watched
 from app.words import Reader, sentence
@@ -23,7 +23,8 @@ if TYPE_CHECKING:
 
 _DOUBTS_SHOWN = 20
 _HINTS = {
-    "patient.unknown": "Say whose results these are: luffmark intake --patient ID=EPISODE {path}",
+    "patient.unknown": "Say whose results these are: luffmark intake --patient '{value}=EPISODE' {path}",
+    "table.names_a_bed": "Say whose values these are: luffmark intake --patient '{value}=EPISODE' {path}",
     "patient.no_identifier": "Say whose results these are: luffmark intake --episode EPISODE {path}",
 }
 """What to type next, by what was refused."""
@@ -123,6 +124,8 @@ def _take(
         f"{counted(made.samples, 'device sample', 'device samples')} taken, "
         f"{made.repeated:,} were in the store already; {counted(len(made.episodes), 'episode', 'episodes')}."
     )
+    if made.new_episodes:
+        text += f"\n  New: {some_of(made.new_episodes)}."
     if made.overlaid:
         before = counted(made.overlaid, "device sample that was taken in before lies",
                          "device samples that were taken in before lie")  # fmt: skip
@@ -141,6 +144,7 @@ def _take(
     return {
         "text": text, "file": str(path), "entries": made.entries, "samples": made.samples,
         "repeated": made.repeated, "overlaid": made.overlaid, "episodes": list(made.episodes),
+        "new_episodes": list(made.new_episodes),
         "doubts": [_row_json(d, reader) for d in intake.doubts],
         "left_out": [_row_json(r, reader) for r in intake.refusals],
         "aside": [_row_json(r, reader) for r in intake.aside],
@@ -157,8 +161,9 @@ def _tell_refused(path: Path, intake: Intake, reader: Reader) -> None:
     hidden = intake.refused_rows - len({r.line for r in intake.refusals})
     if hidden > 0:
         print(f"  ... and {hidden} more row(s)", file=sys.stderr)
-    for key in dict.fromkeys(r.message.key for r in intake.refusals if r.message.key in _HINTS):
-        print(f"  {_HINTS[key].format(path=path)}", file=sys.stderr)
+    hints = [(r.message.key, plain(str(r.message.values.get("value", "")))) for r in intake.refusals]
+    for key, value in dict.fromkeys(h for h in hints if h[0] in _HINTS):
+        print(f"  {_HINTS[key].format(path=path, value=value)}", file=sys.stderr)
 
 
 def _row(found: Refusal | Doubt, reader: Reader) -> str:

@@ -13,6 +13,7 @@ from app.dialogs.asking import AskingDialog
 from app.intake_window.code_rows import CodeRows
 from app.intake_window.found_table import MOST_ROWS, FoundTable
 from app.intake_window.patient_rows import PatientRows
+from app.look.formats import some_of
 from app.look.plain_label import plain_label
 from app.look.theme import Theme
 from app.operations import intake as intake_operations
@@ -90,6 +91,11 @@ class IntakeDialog(AskingDialog):
         self._clock.start()
         self._number = self._model.ask(intake_operations.read, self._request, done=self._read, failed=self._failed)
 
+    @property
+    def request(self) -> ReadRequest:
+        """The file with all that was said of it."""
+        return self._request
+
     def _patient_said(self, identifier: str, episode: str) -> None:
         """A person says whose an identifier is: the file is read again with it."""
         self.go.setEnabled(False)
@@ -159,7 +165,8 @@ class IntakeDialog(AskingDialog):
         self.bar.hide()
         self._tell_left("")
         self.summary.setText(self.words(outcome.value))
-        self.patients.show_unknown(outcome.value.unknown_patients, self._request.episodes)
+        unknown, of_table = outcome.value.unknown_patients, outcome.value.source.kind == "table"
+        self.patients.show_unknown(unknown, self._request.episodes, of_table=of_table)
         self.codes.setEnabled(True)
         self.codes.show_unknown(outcome.value.unknown_codes)
         self.table.show_found(outcome.value)
@@ -172,7 +179,7 @@ class IntakeDialog(AskingDialog):
         self.leave_out.setVisible(bool(outcome.value.refusals) and outcome.value.whole)
         self._allow()
         self.go.setFocus()
-        QTimer.singleShot(0, self.grow)  # once what was just shown has its height
+        QTimer.singleShot(0, self, self.grow)  # once what was just shown has its height
 
     def words(self, intake: Intake) -> str:
         """The file in a few sentences."""
@@ -186,6 +193,10 @@ class IntakeDialog(AskingDialog):
         told = self.tr("{name}: {brought} for {episodes}.")
         joined = self.tr(" and ").join(brought)
         parts = [told.format(name=self._path.name, brought=joined, episodes=of)]
+        if intake.new_episodes:
+            begins = _counted(len(intake.new_episodes), self.tr("A new episode begins: {keys}."),
+                              self.tr("{count} new episodes begin: {keys}."))  # fmt: skip
+            parts.append(begins.format(keys=some_of(intake.new_episodes)))
         counts = (
             (intake.empty_count, self.tr("1 device sample is empty: a gap."),
              self.tr("{count} device samples are empty: gaps.")),

@@ -1,11 +1,11 @@
-"""Identifiers of patients whose episode is not known: a person says each once, and it is kept."""
+"""Identifiers of patients, and names in a table's own column, whose episode is not known: a person says each once."""
 
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 
 from PySide6.QtCore import Signal
-from PySide6.QtWidgets import QComboBox, QGridLayout, QPushButton, QWidget
+from PySide6.QtWidgets import QComboBox, QGridLayout, QLabel, QPushButton, QWidget
 
 from app.intake_window.episode_choices import choices, chosen_or_typed
 from app.look.emptied import emptied
@@ -31,16 +31,18 @@ class PatientRows(QWidget):
         self.buttons: dict[str, QPushButton] = {}
         self.hide()
 
-    def show_unknown(self, identifiers: Sequence[str], episodes: Mapping[str, str]) -> None:
-        """Ask for identifiers; none hides the rows. Nothing is chosen beforehand."""
+    def show_unknown(
+        self, identifiers: Sequence[str], episodes: Mapping[str, str], *, of_table: bool = False
+    ) -> None:
+        """Ask for identifiers, or for the names of a table's column; none hides the rows. Nothing is chosen."""
         emptied(self._grid)
         self.boxes, self.buttons = {}, {}
         for row, text in enumerate(identifiers[:MOST]):
-            self._add(row, text, episodes)
+            asked = self.tr("'{name}' in this file is") if of_table else self.tr("Patient {identifier} is")
+            self._add(row, text, plain_label(asked.format(name=text, identifier=text)), episodes)
         self.setVisible(bool(identifiers))
 
-    def _add(self, row: int, text: str, episodes: Mapping[str, str]) -> None:
-        label = plain_label(self.tr("Patient {identifier} is").format(identifier=text))
+    def _add(self, row: int, text: str, label: QLabel, episodes: Mapping[str, str]) -> None:
         box, button = QComboBox(), QPushButton(self.tr("Confirm"))
         box.setEditable(True)
         box.setInsertPolicy(QComboBox.InsertPolicy.NoInsert)

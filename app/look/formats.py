@@ -7,6 +7,7 @@ plain text: where Qt could take it for rich text, pass it through `inert`.
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 from decimal import ROUND_HALF_UP, Decimal
 from html import escape
 from math import isnan
@@ -292,6 +293,16 @@ def counted(count: int, one: str, many: str) -> str:
     ('1 entry', '2,340 entries')
     """
     return f"{count:,} {one if count == 1 else many}"
+
+
+def some_of(names: Sequence[str], most: int = 5) -> str:
+    """The first of several names, and how many more there are.
+
+    >>> some_of(("A", "B")), some_of("ABCDE", 3)
+    ('A, B', 'A, B, C and 2 more')
+    """
+    more = len(names) - most
+    return ", ".join(names[:most]) + (f" and {more:,} more" if more > 0 else "")
 
 
 def opened(text: str) -> str:

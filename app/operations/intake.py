@@ -26,7 +26,8 @@ class ReadRequest:
     """A file with what a person says of it.
 
     `mapping` is how a table is read (`mapping_name`: one that is kept; neither: one recognised by its header).
-    `episode` is whose the file is, where it does not say; `patients` gives single identifiers their episode.
+    `episode` is whose the file is, where it does not say; `patients` gives single identifiers their episode, and
+    what a table's own column calls a bed.
     `zone` is for times without an offset; `clock_shift_s` is added to a device's times. `said` is how a table is
     written; what it leaves open the mapping says, and then what is found. `episodes`, by key what the
     ward calls them, are offered to a person who has to say whose an identifier is.
@@ -65,6 +66,7 @@ class Taken:
     episodes: tuple[str, ...]
     aside: int = 0
     source_id: str = ""
+    new_episodes: tuple[str, ...] = ()
     overlaid: int = 0
     """Device samples of earlier files that lie under it now."""
 
@@ -116,7 +118,7 @@ def _read_table(store: Store, now: Instant, wanted: ReadRequest) -> Intake:
         mapping = replace(mapping, leak_definition=wanted.leak_definition)
     if wanted.zone and not mapping.time.zone:
         mapping = replace(mapping, time=replace(mapping.time, zone=wanted.zone))
-    answers = Answers(wanted.episode, wanted.clock_shift_s)
+    answers = Answers(wanted.episode, wanted.clock_shift_s, wanted.patients)
     return read_table(table, mapping, now=now, answers=answers, existing=store, progress=report)
 
 
@@ -178,6 +180,7 @@ def take(store: Store, who: str, now: Instant, request: TakeRequest) -> Outcome[
         intake.episodes,
         intake.aside_count,
         intake.source.id if receipt else "",
+        intake.new_episodes,
         intake.overlaid,
     )
     return Outcome(taken, receipt.last_seq if receipt else store.head())

@@ -137,6 +137,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "row.device_entry": "'{value}' is no action for device samples. Accepted: {accepted}.",
     "row.quotes": "A quotation mark is not closed, or stands in a wrong place ({detail}).",
     "row.repeated": "The row stands in the file already, on line {first_line}. Accepted: {accepted}.",
+    "row.key_is_label":
+        "A new episode '{value}' would begin beside {episodes}, which the ward calls so and which has not ended.",
     "row.label_shared":
         "'{label}' is the label of episode {episode} too, which has not ended: one patient under two keys, or two in "
         "one bed?",

@@ -48,6 +48,10 @@ TEMPLATES: Final[dict[str, str]] = {
     "table.encoding_unknown": "There is no encoding '{value}'. Accepted: {accepted}.",
     "table.header_line": "The header cannot stand on line {value}. Accepted: {accepted}.",
     "table.encoding_assumed": "The text is taken as {encoding}: check letters that are not plain.",
+    "table.after_end": "The support of episode {value} ended at {ended_at:time}; rows from {at:time} on are later. "
+    "Is it the same patient?",
+    "table.names_a_bed": "'{value}' is the key of no episode, but the ward calls {episodes} so. Whose values are "
+    "these? Accepted: {accepted}.",
     "table.no_rows": "No row stands under the first line, which must be the header. Accepted: {accepted}.",
     "table.too_wide": "The table has too many columns. Accepted: at most {accepted}.",
     "time.unlike": "The time '{value}' is not written like the others. Accepted: {accepted}.",

@@ -57,6 +57,8 @@ class Intake:
     `repeated_in_store` counts rows that the store already has; they are skipped.
     `aside` lists what is readable and not for this record, with the reason: codes that are no channel, results
     that were cancelled. `aside_count` counts them all. `unknown_codes` are those a person may give a channel.
+    `unknown_patients` are the identifiers, and the names in a table's own column, that a person has to answer for;
+    `new_episodes` those of its episodes that the store has nothing of.
     `head` is the store's newest sequence when the file was read: what was recorded since was not looked at.
     """
 
@@ -73,6 +75,7 @@ class Intake:
     unknown_patients: tuple[str, ...] = ()
     unknown_codes: tuple[UnknownCode, ...] = ()
     head: int | None = None
+    new_episodes: tuple[str, ...] = ()
 
     @property
     def overlaid(self) -> int:

@@ -5,13 +5,15 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable, Iterator, Sequence
 
 from core.record.instant import DAY
+from core.record.labels import alike
 from core.record.message import Message
 from storage.chunks import Block
-from storage.draft_batch import SourceFacts
+from storage.draft_batch import DraftEntry, SourceFacts
 from storage.intake.entry_rows import EntryRows
 from storage.intake.findings import Findings, Intake, Refusal
 from storage.intake.fresh_chunks import FreshChunks
 from storage.intake.held_samples import Compared, HeldSamples
+from storage.intake.named_episodes import open_labels
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
 from storage.store import Store
@@ -44,13 +46,35 @@ def judged_intake(
         message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
         findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
     findings.refused_rows += spool.repeated_count - len(spool.repeated)
+    new = new_episodes(entries, chunks, existing)
+    _doubt_names(new, rows, existing, findings)
     return Intake(
         source, entries, chunks if len(chunks) else (),
         tuple(sorted(findings.refusals, key=lambda r: r.line)), findings.refused_rows,
         judged.repeated + known + repeated,
         tuple(sorted(findings.doubts, key=lambda d: d.line)), whole,
-        tuple(aside), max(aside_count, len(aside)),
+        tuple(aside), max(aside_count, len(aside)), new_episodes=new,
     )  # fmt: skip
+
+
+def new_episodes(entries: Iterable[DraftEntry], chunks: FreshChunks, existing: Store | None) -> tuple[str, ...]:
+    """The episodes that would begin: those of which the store has nothing, in order of appearance."""
+    keys = dict.fromkeys([d.entry.episode for d in entries] + [episode for episode, _channel in chunks.spans])
+    return tuple(k for k in keys if existing is None or not existing.has_episode(k))
+
+
+def _doubt_names(new: Sequence[str], rows: Iterable[EntryRow], existing: Store | None, findings: Findings) -> None:
+    """Say where a new episode would have as its key what the ward calls another one that goes on."""
+    labels = open_labels(existing) if new else {}
+    doubtful = {key: called for key in new if (called := labels.get(alike(key)))}
+    if not doubtful:
+        return
+    lines: dict[str, int] = {}
+    for row in rows:
+        lines.setdefault(row.draft.entry.episode, row.line)
+    for key, called in doubtful.items():
+        message = Message("row.key_is_label", {"value": key, "episodes": ", ".join(called[:3])})
+        findings.doubt(lines.get(key, 1), "", key, message)
 
 
 def new_chunks(

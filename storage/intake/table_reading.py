@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 from pathlib import Path
 
 from core.record.channels import CHANNELS
@@ -13,6 +14,7 @@ from storage.intake.findings import Findings, Intake, UnreadableFileError, unrea
 from storage.intake.held_settings import SettingChanges
 from storage.intake.judged import judged_intake
 from storage.intake.mapping import Mapping, open_questions
+from storage.intake.named_episodes import NamedEpisodes
 from storage.intake.sample_spool import SampleSpool
 from storage.intake.table import Table, open_table
 from storage.intake.table_dialect import column_names
@@ -36,11 +38,12 @@ def read_table(
     """
     answers = answers or Answers()
     findings, spool, changes = Findings(), SampleSpool(), SettingChanges(existing)
+    named = NamedEpisodes(existing, answers.named)
     path = table if isinstance(table, Path) else table.path
     try:
         opened = open_table(table) if isinstance(table, Path) else table
         check_complete(opened, mapping, answers)
-        rows = TableRows(opened.header, mapping, answers, now, findings, spool, changes)
+        rows = TableRows(opened.header, mapping, answers, now, findings, spool, changes, named)
         blocks = opened.blocks(progress, cancelled)
         for number, block in enumerate(blocks):
             rows.take(_behind_header(block, opened) if number == 0 else block)
@@ -52,7 +55,8 @@ def read_table(
     _doubt_precision(opened, mapping, findings)
     source = SourceFacts("table", path.name, blocks.sha, blocks.size, _facts(opened, mapping, answers, spool))
     made = sorted([*rows.entries, *changes.rows()], key=lambda row: row.line)
-    return judged_intake(source, made, spool, findings, existing, progress=progress)
+    intake = judged_intake(source, made, spool, findings, existing, progress=progress)
+    return replace(intake, unknown_patients=tuple(named.unknown))
 
 
 def _doubt_precision(table: Table, mapping: Mapping, findings: Findings) -> None:
@@ -122,6 +126,7 @@ def _facts(
         facts["sheet"] = table.dialect.sheet
     if answers.clock_shift_s:
         facts["clock_shift_s"] = answers.clock_shift_s
+    facts |= {f"named.{name}": key for name, key in answers.named.items()}
     if mapping.leak_definition:
         facts["leak_definition"] = mapping.leak_definition
     facts |= {f"column.{c.column}": f"{c.channel} {c.unit}".strip() for c in mapping.used}

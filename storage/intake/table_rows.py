@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from collections.abc import Mapping as Map
+from dataclasses import dataclass, field, replace
 from itertools import pairwise
 
 import numpy as np
@@ -22,6 +23,7 @@ from storage.intake.distinct import groups
 from storage.intake.findings import CLOCK_LEAD, Findings, check_entry_count
 from storage.intake.held_settings import SettingChanges
 from storage.intake.mapping import Mapping, is_sampled
+from storage.intake.named_episodes import NamedEpisodes
 from storage.intake.number_columns import NumberColumn
 from storage.intake.row_reading import EntryRow
 from storage.intake.sample_spool import SampleSpool
@@ -31,7 +33,6 @@ from storage.intake.table_text import RowBlock
 from storage.intake.table_times import read_time
 from storage.intake.time_columns import read_times
 
-_MOST_KEY = 200
 _FAR = 1 << 62
 
 
@@ -39,11 +40,12 @@ _FAR = 1 << 62
 class Answers:
     """What a person says of one file beside its mapping: whose it is, and by how much the device's clock was off.
 
-    `clock_shift_s` is added to every time.
+    `clock_shift_s` is added to every time. `named` says which episode a name in the table's own column means.
     """
 
     episode: str = ""
     clock_shift_s: float = 0.0
+    named: Map[str, str] = field(default_factory=dict)
 
 
 @dataclass(frozen=True, slots=True)
@@ -76,8 +78,9 @@ class TableRows:
 
     def __init__(
         self, header: tuple[str, ...], mapping: Mapping, answers: Answers, now: Instant, findings: Findings,
-        spool: SampleSpool, changes: SettingChanges,
+        spool: SampleSpool, changes: SettingChanges, named: NamedEpisodes,
     ) -> None:  # fmt: skip
+        self._named, self._late = named, set[str]()
         self._header, self._mapping, self._answers = header, mapping, answers
         self._now, self._findings, self._spool, self._changes = now, findings, spool, changes
         self._shift = round(answers.clock_shift_s * 1_000_000)
@@ -167,22 +170,37 @@ class TableRows:
         return f"{text.split(' ')[0]} {fields.text(row, self._place[use.clock]).strip()}" if use.clock else text
 
     def _by_episode(self, rows: _Rows) -> Iterator[_Rows]:
-        """The rows of each episode; those with none are refused."""
+        """The rows of each episode; those of which it is not known whose they are, are refused."""
         if not self._mapping.episode_column:
             yield replace(rows, episode=self._answers.episode)
             return
         column = self._place[self._mapping.episode_column]
         of: dict[str, list[Offsets]] = {}
         for places in groups(rows.fields, (column,), rows.at):
-            of.setdefault(rows.fields.text(int(rows.at[places[0]]), column).strip(), []).append(places)
+            name = rows.fields.text(int(rows.at[places[0]]), column).strip()
+            try:
+                of.setdefault(self._named.episode(name), []).append(places)
+            except RecordError as error:
+                for line in rows.some(places).lines.tolist():
+                    self._findings.refuse(line, self._mapping.episode_column, name, error.message)
         for key, found in of.items():
             some = rows.some(np.sort(np.concatenate(found)), key)
-            if key and len(key) <= _MOST_KEY:
-                yield some
-                continue
-            values: dict[str, Value] = {"value": key[:80], "accepted": f"a key of 1 to {_MOST_KEY} letters"}
-            for line in some.lines.tolist():
-                self._findings.refuse(line, self._mapping.episode_column, key, Message("entry.no_episode", values))
+            self._doubt_late(some, column)
+            yield some
+
+    def _doubt_late(self, rows: _Rows, column: int) -> None:
+        """Say once of an episode that its support ended before a row: another patient may have that bed now."""
+        ended = self._named.ended_at(rows.episode) if rows.episode not in self._late else None
+        if ended is None:
+            return
+        late = np.flatnonzero(rows.t > ended)
+        if late.size:
+            self._late.add(rows.episode)
+            first = int(late[0])
+            name = rows.fields.text(int(rows.at[first]), column).strip()
+            values: dict[str, Value] = {"value": rows.episode, "ended_at": ended, "at": int(rows.t[first])}
+            self._findings.doubt(int(rows.lines[first]), self._mapping.episode_column, name,
+                                 Message("table.after_end", values))  # fmt: skip
 
     # values
 

@@ -97,7 +97,7 @@ def test_a_refusal_says_what_to_type_next(run: Run, tmp_path: Path) -> None:
     path.write_text(message(gas()))
     code, _, err = run("intake", path)
     assert code != DONE
-    assert f"luffmark intake --patient ID=EPISODE {path}" in err
+    assert f"luffmark intake --patient 'WARD-7|0042=EPISODE' {path}" in err
     table = tmp_path / "t.csv"
     table.write_text("When;Saettigung\n2026-03-27 20:00;91\n", "utf-8")
     code, _, err = run("intake", table)
@@ -131,3 +131,28 @@ def test_fhir_goes_out_and_comes_in(run: Run, tmp_path: Path, gases: Path) -> No
     assert (code, "0 entries" in out) == (DONE, True)
     code, _, err = run("intake", tmp_path / "none.csv")
     assert (code, "none.csv is not there" in err) == (REFUSED, True)
+
+
+def test_a_bed_s_name_in_a_table_is_no_key(run: Run, tmp_path: Path) -> None:
+    night = tmp_path / "night.csv"
+    night.write_text(
+        "episode,at,channel,value,unit,by,note\n"
+        "B4,2026-03-27T20:00:00Z,label,Bed 4,,AB,\nB4,2026-03-27T20:00:00Z,mode,BPAP-ST,,AB,\n"
+    )
+    assert run("intake", night)[0] == DONE
+    table = tmp_path / "gases.csv"
+    table.write_text("Time,Bed,pH\n2026-03-28T01:10:00Z,Bed 4,7.19\n2026-03-28T01:20:00Z,Bed 9,7.31\n")
+    proposal = json.loads(run("mapping", "propose", table, "--name", "beds")[1])
+    proposal["mapping"]["written_by"] = "person"
+    answered = tmp_path / "beds.json"
+    answered.write_text(json.dumps(proposal))
+    assert run("mapping", "put", answered)[0] == DONE
+    code, _, err = run("intake", table)
+    assert code == REFUSED
+    assert "the ward calls B4 so" in err
+    assert f"luffmark intake --patient 'Bed 4=EPISODE' {table}" in err
+    code, out, _ = run("intake", table, "--patient", "Bed 4=B4")
+    assert code == DONE
+    assert "2 entries" in out
+    assert "New: Bed 9." in out
+    assert json.loads(run("intake", table, "--patient", "Bed 4=B4", "--json")[1])["taken"][0]["new_episodes"] == []

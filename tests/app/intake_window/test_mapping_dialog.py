@@ -304,3 +304,38 @@ def test_a_column_that_a_person_names_brings_the_unit_that_its_header_says(qtbot
     assert "10 device samples are empty: gaps." in intake.summary.text()
     assert any("40 samples (10 empty)" in intake.table.item(r, 2).text() for r in range(intake.table.rowCount()))
     intake.reject()
+
+
+def test_a_bed_s_name_in_a_column_is_asked_about_and_answered_once_for_the_files_of_one_night(
+    qtbot, window, tmp_path
+):
+    paths = []
+    for n in (1, 2):
+        paths.append(tmp_path / f"part{n}.csv")
+        paths[-1].write_text(f"Time,Bed,pH\n2026-03-28T0{n}:10:00Z,Bed 7,7.2{n}\n2026-03-28T0{n}:20:00Z,Bed 99,7.30\n")
+    first = window.doers.file.take_in(*paths)
+    until(qtbot, lambda: first.looked is not None)
+    choose(first.answers.writer, "person")
+    first.name.setText("beds")
+    first.go.click()
+    found = visible(window, IntakeDialog)
+    until(qtbot, lambda: found.intake is not None)
+    assert not found.go.isEnabled()
+    assert "A new episode begins: Bed 99." in found.summary.text()
+    box = found.patients.boxes["Bed 7"]
+    assert box.accessibleName() == "'Bed 7' in this file is"
+    box.setCurrentIndex(box.findData("bed-7"))
+    found.patients.buttons["Bed 7"].click()
+    until(qtbot, lambda: found.go.isEnabled())
+    assert found.intake.episodes == ("bed-7", "Bed 99")
+    found.go.click()
+    until(qtbot, lambda: any(d.isVisible() and d is not first for d in window.findChildren(MappingDialog)))
+    second = visible(window, MappingDialog)
+    until(qtbot, lambda: second.looked is not None and second.go.isEnabled())
+    second.go.click()
+    until(qtbot, lambda: any(d.isVisible() and d.intake is not None for d in window.findChildren(IntakeDialog)))
+    other = visible(window, IntakeDialog)
+    until(qtbot, lambda: other.go.isEnabled())
+    assert other.intake.episodes == ("bed-7", "Bed 99")
+    assert "new episode" not in other.summary.text()
+    other.reject()
