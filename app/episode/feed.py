@@ -24,6 +24,8 @@ class EpisodeFeed(QObject):
 
     refreshed = Signal(object)
     """`EpisodeOnScreen`."""
+    gone = Signal()
+    """Nothing of the selected episode stands at the moment that is looked at."""
 
     def __init__(self, model: SessionModel, ward: WardFeed, gas_unit: str, parent: QObject | None = None) -> None:
         super().__init__(parent)
@@ -84,6 +86,8 @@ class EpisodeFeed(QObject):
         """Tell what the selected episode is now."""
         key = self._model.session.selection
         on_ward = self._ward.on_ward(key) if key is not None else None
+        if key is not None and on_ward is None and self._ward.is_ready:
+            self.gone.emit()
         if key is not None and on_ward is not None:
             record, session = self._ward.answers[key].record, self._model.session
             called = label_told_apart(self._ward.answers, key, session.moment(), session.zone)

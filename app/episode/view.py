@@ -169,6 +169,7 @@ class EpisodeView(QWidget):
             self.stack.set_window(*window)
         if same and instant is not None:
             self.stack.point_at(instant)
+        self._show_parts(shown=True)
         self.title.setText(on.figures.label)
         self.standing.say("; ".join(self._standing(on)))
         self.standing.ensurePolished()
@@ -176,6 +177,16 @@ class EpisodeView(QWidget):
         self.about.say(self._about(on))
         self.side.show_figures(on.figures, on.policy, self._reader())
         self._tell(self.stack.instant)
+
+    def show_nothing(self, why: str) -> None:
+        """Show that there is nothing to show: what stood here before must not be taken for this moment's."""
+        self._on = None
+        self.title.setText(why)
+        self._show_parts(shown=False)
+
+    def _show_parts(self, *, shown: bool) -> None:
+        for part in (self.standing, self.about, self.notice, self.panels_button, self.readout, self.roll, self.side):
+            part.setVisible(shown)
 
     @property
     def episode(self) -> str | None:

@@ -134,12 +134,19 @@ class MapView(QWidget):
         reader = self._reader()
         spec = map_spec(on.figures, reader)
         self.map.set_spec(spec)
+        self.roll.show()
         self.title.setText(self.tr("Acid-base map, {label}").format(label=on.figures.label))
         self._fill(map_table(on.figures, reader))
         self.map.choose(before.number if before is not None else 0)
         if self.map.chosen is None and spec.gases:
             self.map.choose(spec.gases[-1].number)
         self._tell(self.map.chosen)
+
+    def show_nothing(self, why: str) -> None:
+        """Show that there is nothing to show: what stood here before must not be taken for this moment's."""
+        self._on = None
+        self.title.setText(why)
+        self.roll.hide()
 
     @property
     def on_screen(self) -> EpisodeOnScreen | None:

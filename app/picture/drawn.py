@@ -114,10 +114,10 @@ def picture_of_page(pages: Pages, theme: Theme, moment: str) -> Picture | None:
         title = translate("picture", "The ward, {moment}").format(moment=moment)
         size = SIZE[0], max(280, 130 + 62 * len(lanes.lanes))
         return Picture(Titled(lanes, theme, title), title, size)
-    if name == "episode" and pages.episode.stack.spec is not None:
+    shown = pages.episode.on_screen if name == "episode" else None
+    if shown is not None and pages.episode.stack.spec is not None:
         spec = replace(pages.episode.stack.spec, window=pages.episode.stack.in_view)
-        whose = pages.episode.on_screen.figures if pages.episode.on_screen is not None else None
-        title = f"{whose.label} ({whose.episode}), {moment}" if whose is not None else spec.name
+        title = f"{shown.figures.label} ({shown.figures.episode}), {moment}"
         return Picture(Titled(spec, theme, title), title)
     if name == "map" and (map_spec := pages.map.picture_spec()) is not None:
         return Picture(map_spec, map_spec.name, (900, 760))

@@ -185,6 +185,7 @@ class MainWindow(Shell):
         self.progress.cancelled.connect(o.model.runner.cancel)
         o.feed.refreshed.connect(self._ward_refreshed)
         o.episode_feed.refreshed.connect(self._episode_refreshed)
+        o.episode_feed.gone.connect(self._episode_gone)
         o.pages.ward.opened.connect(self.open_episode)
         o.pages.ward.selected.connect(self.select)
         o.pages.made.connect(self.turner.page_made)
@@ -297,6 +298,13 @@ class MainWindow(Shell):
             o.pages.episode.show_episode(on, o.model.session.moment())
         elif o.pages.name == "map":
             o.pages.map.show_episode(on)
+
+    def _episode_gone(self) -> None:
+        o = self.now_open()
+        then, now = self.tr("Nothing of this episode was recorded by then"), self.tr("This episode is shown no more")
+        if o.pages.name in ("episode", "map"):
+            page = o.pages.episode if o.pages.name == "episode" else o.pages.map
+            page.show_nothing(now if o.model.session.is_live else then)
 
     def forget_handovers(self) -> bool:
         """Throw away the closed handovers that were opened in another program. Whether there were any."""

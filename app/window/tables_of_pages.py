@@ -70,7 +70,7 @@ def table_of_page(window: Shell) -> Table | None:
         return None
     if pages.name == "ward" and pages.ward.lanes.spec is not None:
         return table_of_lanes(pages.ward.lanes.spec, feed.content())
-    if pages.name == "episode" and pages.episode.stack.spec is not None:
+    if pages.name == "episode" and pages.episode.on_screen is not None and pages.episode.stack.spec is not None:
         from app.episode.stack_table import table_of_stack
 
         return table_of_stack(pages.episode.stack.spec, pages.episode.stack.in_view)

@@ -17,7 +17,9 @@ from app.dialogs.export import ExportDialog, Wanted
 from app.dialogs.print_preview import HandoverPreview
 from app.operations import episode, figures, statistics
 from app.operations.episode import BeginRequest
+from app.picture.drawn import picture_of_page
 from app.statistics.measures import CSV_HEADER, measures
+from app.window.tables_of_pages import table_of_page
 from core.figures.json_form import to_json
 from core.record.instant import MINUTE, parse
 from storage.store import Store
@@ -91,6 +93,29 @@ def test_steps_by_a_quarter_of_an_hour_and_by_recording(qtbot, window):
     assert window.model.session.as_known_at < after
     window.doers.review.step(24 * 60)
     assert window.model.session.is_live
+
+
+@pytest.mark.parametrize("name", ["episode", "map"])
+def test_before_anything_was_recorded_of_an_episode_its_pages_are_empty(qtbot, window, name):
+    key = window.model.session.selection
+    window.show_page(name)
+    settled(qtbot, window)
+    page = getattr(window.pages, name)
+    label = page.title.text()
+    assert page.roll.isVisible()
+    window.doers.review.look_at(parse("2026-03-26T02:00:00Z"))
+    settled(qtbot, window)
+    until(qtbot, lambda: page.title.text() == "Nothing of this episode was recorded by then")
+    assert not page.roll.isVisible()
+    assert page.on_screen is None
+    assert picture_of_page(window.pages, window.theme, "") is None
+    assert table_of_page(window) is None
+    for key_of_action in ("go_start", "go_now", "next_anchor", "previous_anchor", "explain", "show_figures", "table"):
+        window.actions_by_key[key_of_action].trigger()  # nothing to act on, and nothing fails
+    press(qtbot, window, "Alt+Home")
+    until(qtbot, lambda: page.title.text() == label)
+    assert page.roll.isVisible()
+    assert window.model.session.selection == key
 
 
 def test_a_time_that_is_none_is_refused_in_words(qtbot, window):
