@@ -21,7 +21,9 @@ from core.record.message import Message
 if TYPE_CHECKING:
     from app.dialogs.close_handover import CloseHandoverDialog
     from app.operations.handover import Handover
+    from core.record.instant import Instant
     from storage.documents import DocumentFacts
+    from storage.store import Store
 
 
 class ClosingDeeds(WritingDeeds):
@@ -29,7 +31,6 @@ class ClosingDeeds(WritingDeeds):
 
     _dialog: CloseHandoverDialog | None = None
     _printed = ""
-    _copy_to: Path | None = None
     _opened_folder: OwnFolder | None = None
 
     def __init__(self, window: Shell, ward: WardDeeds) -> None:
@@ -150,16 +151,11 @@ class ClosingDeeds(WritingDeeds):
 
     def fetch_closed(self, document: str, path: Path) -> None:
         """Write a closed handover's bytes, unchanged."""
-        from app.operations import handover
+        self.model.ask(_fetch, (document, path), done=self._fetched)
 
-        self._copy_to = path
-        self.model.ask(handover.closed, document, done=self._fetched)
-
-    def _fetched(self, outcome: Outcome[bytes]) -> None:
-        path = self._copy_to
-        if path is None:
-            return
-        self.write(path, outcome.value)
+    def _fetched(self, outcome: Outcome[tuple[bytes, Path]]) -> None:
+        data, path = outcome.value
+        self.write(path, data)
         if self._opened_folder is not None and path.parent == self._opened_folder.path:
             QDesktopServices.openUrl(QUrl.fromLocalFile(str(path)))
 
@@ -200,3 +196,12 @@ class ClosingDeeds(WritingDeeds):
             return
         self.window.prefer(shift_starts=starts)
         self.window.say(self.tr("Shifts begin at {times}.").format(times=", ".join(starts)))
+
+
+def _fetch(store: Store, who: str, now: Instant, request: tuple[str, Path]) -> Outcome[tuple[bytes, Path]]:
+    """A closed handover and where it goes: of two that are asked for, none is written under the other's name."""
+    from app.operations import handover
+
+    document, path = request
+    found = handover.closed(store, who, now, document)
+    return Outcome((found.value, path), found.head)
