@@ -7,10 +7,10 @@ import string
 from collections.abc import Callable
 from functools import partial
 from random import Random
-from typing import TYPE_CHECKING, Final, TypeVar
+from typing import TYPE_CHECKING, Final
 
-from PySide6.QtCore import QPoint, QPointF, Qt
-from PySide6.QtGui import QKeySequence, QWheelEvent
+from PySide6.QtCore import QPoint, Qt
+from PySide6.QtGui import QKeySequence
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import (
     QAbstractButton,
@@ -30,15 +30,14 @@ from PySide6.QtWidgets import (
 from app.operations import entry
 from app.window.action_table import DEEDS
 from tests.support.open_window import ZONE
+from tests.support.walk_hands import PLAIN, front, keys_go_to, named, parts, turn, write
 from tests.support.walk_watch import dialogs_seen, front_dialog
 from tests.support.walk_words import BRIEF, LINES, NONSENSE, PAGES, TYPED
 
 if TYPE_CHECKING:
     from tests.support.random_walk import Walker
 
-W = TypeVar("W", bound=QWidget)
 Key = Qt.Key
-PLAIN: Final = Qt.KeyboardModifier.NoModifier
 KEYS: Final = (
     Key.Key_Return, Key.Key_Enter, Key.Key_Escape, Key.Key_Escape, Key.Key_Tab, Key.Key_Backtab, Key.Key_Up,
     Key.Key_Down, Key.Key_Left, Key.Key_Right, Key.Key_Home, Key.Key_End, Key.Key_PageUp, Key.Key_PageDown,
@@ -51,41 +50,6 @@ HELD: Final = (
 SIZES: Final = ((1000, 640), (1280, 800), (1100, 900), (1920, 1080))
 NEVER: Final = frozenset({"quit"})
 """Closing is a step of its own."""
-
-
-# where
-
-
-def front() -> QWidget | None:
-    """What takes the keys: a popup, the dialog in front, else the window."""
-    return QApplication.activePopupWidget() or front_dialog() or QApplication.activeWindow()
-
-
-def parts(walker: Walker, kind: type[W]) -> list[W]:
-    """What of a kind could be used now."""
-    root = front_dialog() or walker.window
-    found = [w for w in root.findChildren(kind) if w.isVisible() and w.isEnabled()]
-    return [w for w in found if w.window() is root.window()]
-
-
-def keys_go_to(walker: Walker) -> QWidget:
-    """The widget that a key goes to."""
-    popup = QApplication.activePopupWidget()
-    root = popup or front_dialog() or walker.window
-    focus = QApplication.focusWidget()
-    if popup is None and focus is not None and focus.window() is root.window():
-        return focus
-    return root
-
-
-def named(widget: QWidget) -> str:
-    """A widget in a few words."""
-    told = getattr(widget, "text", None)
-    text = widget.accessibleName() or (told() if callable(told) and not isinstance(told, QWidget) else "")
-    return f"{type(widget).__name__} '{text[:40]}'"
-
-
-# what
 
 
 def acts(walker: Walker, chance: Random) -> str:
@@ -141,19 +105,6 @@ def logs(walker: Walker, chance: Random) -> str:
     write(strip.line, text[:200], anew=chance.random() < 0.7)
     walker.after(waits, [lambda: press_enter(walker) for _ in range(enters)], apart=chance.choice((0, 20, 200)))
     return ""
-
-
-def write(field: QWidget, text: str, *, anew: bool) -> None:
-    """As by hand; what stands outside ASCII is pasted."""
-    field.setFocus()
-    if anew:
-        QTest.keyClick(field, Key.Key_A, Qt.KeyboardModifier.ControlModifier)
-        QTest.keyClick(field, Key.Key_Delete)
-    if text.isascii():
-        QTest.keyClicks(field, text)
-    else:
-        QApplication.clipboard().setText(text)
-        QTest.keyClick(field, Key.Key_V, Qt.KeyboardModifier.ControlModifier)
 
 
 def press_enter(walker: Walker) -> None:
@@ -264,17 +215,6 @@ def uses_mouse(walker: Walker, chance: Random) -> str:
         button = {"right": Qt.MouseButton.RightButton, "middle": Qt.MouseButton.MiddleButton}.get(how, left)
         QTest.mouseClick(target, button, PLAIN, local)
     return ""
-
-
-def turn(target: QWidget, at: QPoint, chance: Random) -> None:
-    """The wheel, alone or with Ctrl or Shift."""
-    held = chance.choice((PLAIN, Qt.KeyboardModifier.ControlModifier, Qt.KeyboardModifier.ShiftModifier))
-    by = QPoint(0, chance.choice((-240, -120, 120, 240)))
-    event = QWheelEvent(
-        QPointF(at), QPointF(target.mapToGlobal(at)), QPoint(), by, Qt.MouseButton.NoButton, held,
-        Qt.ScrollPhase.NoScrollPhase, False,
-    )  # fmt: skip
-    QApplication.sendEvent(target, event)
 
 
 def ends_dialog(walker: Walker, chance: Random) -> str:

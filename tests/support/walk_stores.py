@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Final
 
 from PySide6.QtWidgets import QApplication
 
-from app.operations import entry, episode, people
+from app.operations import entry, episode, panel, people, policy
 from app.window.screen_dialogs import LOG_FILE, TABLE_FILE
 from core.judgement.policy import shipped_text
 from storage import keys as store_keys
@@ -155,6 +155,25 @@ def _take_back(key: str, store: Store, now: int) -> None:
         correction.undo(store, "ZZ", now, correction.UndoRequest(key, ids))
 
 
+def others_care(walker: Walker, chance: Random) -> str:
+    """Another program puts another policy in force, lays out panels, or adds somebody who signs in."""
+    model = walker.window.model
+    if model is None:
+        return "other: no store"
+    what = chance.choice(("policy", "policy", "panels", "panels", "people"))
+    if what == "people" and model.session.store_path != walker.files.signed:
+        what = "panels"
+    walker.say(f"another program: {what}")
+    text = chance.choice((shipped_text(), (walker.files.folder / "policy.toml").read_text("utf-8")))
+    initials = f"P{chance.randrange(100)}"
+    walker.beside({
+        "policy": lambda store, now: policy.put(store, "ZZ", now, text),
+        "panels": lambda store, now: panel.keep(store, "ZZ", now, panel.Layout("panels.copd", None)),
+        "people": lambda store, now: people.add(store, "AB", now, people.NewPerson(initials, PIN)),
+    }[what])  # fmt: skip
+    return ""
+
+
 def others_hold(walker: Walker, chance: Random) -> str:
     """Another program holds the store's write lock for a while."""
     if walker.window.model is None:
@@ -166,7 +185,9 @@ def others_hold(walker: Walker, chance: Random) -> str:
 
 Step = Callable[["Walker", Random], str]
 ALONE: Final[tuple[tuple[int, Step], ...]] = (
-    (3, opens_store), (1, leaves_store), (3, takes_in), (2, others_begin), (1, others_hold),
+    (3, opens_store), (1, leaves_store), (3, takes_in), (2, others_begin), (1, others_hold), (1, others_care),
 )  # fmt: skip
-IN_DIALOG: Final[tuple[tuple[int, Step], ...]] = ((1, leaves_store), (2, others_begin), (1, others_hold))
+IN_DIALOG: Final[tuple[tuple[int, Step], ...]] = (
+    (1, leaves_store), (2, others_begin), (1, others_hold), (1, others_care),
+)  # fmt: skip
 LOCKED: Final[tuple[tuple[int, Step], ...]] = ((1, opens_store), (1, leaves_store), (1, others_begin))
