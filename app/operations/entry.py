@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from app.operations.entry_questions import check_target, questions
 from app.operations.episode import checked_key, load
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded, append
+from core.judgement.split_gas import moment_of_gas
 from core.record.episode import Episode
 from core.record.instant import Instant
 from core.record.local_time import check_not_future
@@ -76,6 +77,7 @@ def _previewed(store: Store, now: Instant, request: LineRequest) -> Preview:
     line = read_line(request.line, now=said, zone=request.zone, in_force=settings.at, gas_unit=request.gas_unit)
     if request.at is not None and line.time_typed:
         raise refuse("line.time_twice", accepted="a time on the line or a moment beside it")
+    line = replace(line, at=moment_of_gas(line.readings, line.at, episode))
     check_not_future(line.at, now)
     check_target(episode, line.at, line.readings)
     return Preview(episode.key, episode.label, line, questions(store, episode, line.at, line.readings))

@@ -11,6 +11,7 @@ from app.operations.policy import in_force
 from core.judgement.entry_doubts import gas_doubts
 from core.judgement.order_doubts import order_doubts
 from core.judgement.second_value import second_values
+from core.judgement.split_gas import rest_of_gas
 from core.judgement.unlike_last_gas import unlike_last_gas
 from core.record.channels import CHANNELS, Group
 from core.record.entries import Entry
@@ -37,6 +38,7 @@ def questions(store: Store, record: Episode, at: Instant, readings: Sequence[Rea
         policy = in_force(store)
         asked += gas_doubts(readings, drawn_on, policy, sample)
         asked += unlike_last_gas(readings, at, record, policy)
+        asked += rest_of_gas(readings, at, record)
     asked += order_doubts(readings, at, record)
     asked += label_questions(store, record.key, readings)
     return tuple(asked)

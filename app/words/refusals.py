@@ -99,6 +99,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "line.time_twice": "The line has a time of its own, and another moment is given beside it. Accepted: {accepted}.",
     "line.too_long": "The line is too long. Accepted: at most {accepted}.",
     "line.twice": "{channel:name} stands twice on the line. Accepted: {accepted}.",
+    "line.signed":
+        "{channel:name} '{value}': is that a change, or the value? Accepted: {accepted}.",
     "line.unconfirmed":
         "{count:pick 1=One value needs;else=Several values need} a yes before being recorded.",
     "line.value_missing": "{channel:name} has no value on the line. Accepted: {accepted}.",

@@ -122,6 +122,12 @@ def read_line(
                    tuple(reader.notes))  # fmt: skip
 
 
+def _check_no_step(name: str, text: str) -> None:
+    """Refuse `ipap +4`: four more, or four? Only a base excess is written with a sign."""
+    if text[:1] in ("+", "-"):
+        raise refuse("line.signed", channel=name, value=text, accepted="the new value itself, without a sign")
+
+
 def _read_time(text: str, now: Instant, zone: str) -> tuple[Instant, str, bool]:
     if match := _TIME.match(text):
         which = (match[2] or match[5] or "").lower()
@@ -303,11 +309,14 @@ class _Items:
         self.i += 1
         if self.i >= len(self.words) or not _NUMBER.fullmatch(self.words[self.i]):
             raise refuse("line.value_missing", channel=name, accepted=f"{name} NUMBER")
+        _check_no_step(name, self.words[self.i])
         self.i += 1
         return self.words[self.i - 1]
 
     def _add(self, key: str, text: str, unit: str = "") -> None:
         channel = CHANNELS[key]
+        if channel.hard is not None and channel.hard[0] >= 0:
+            _check_no_step(key, text)
         if not unit and channel.units is MMHG_GAS:
             if channel.group is Group.GAS:  # its unit is known once the whole gas has been read
                 self.readings.append(Reading(channel, None, None, text, "", None))

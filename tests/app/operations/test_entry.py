@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 
 from app.operations import correction, entry, episode, facts
 from app.words import sentence
-from core.record.instant import HOUR, MINUTE, parse
+from core.record.instant import HOUR, MINUTE, SECOND, parse
 from core.record.message import RecordError
 from storage.store import Store
 
@@ -233,6 +233,31 @@ def _do(store: Store, step: str, last: entry.Recorded, n: int, *, standing: bool
         wanted = correction.CorrectionRequest("A", current, "x", str(25 + n), confirmed=True)
         return correction.correct(store, "AB", NOW, wanted).value
     return correction.withdraw(store, "AB", NOW, correction.WithdrawalRequest("A", current, "x")).value
+
+
+def test_a_gas_typed_in_two_lines_of_one_minute_is_one_gas(store: Store) -> None:
+    def typed(text: str, second: int) -> None:
+        entry.log_line(store, "AB", NOW + second * SECOND, line(text))
+
+    typed("ph 7.25", 5)
+    typed("paco2 60 pao2 58", 40)
+    (gas,) = store.episode("A").gases
+    assert (gas.ph, gas.paco2, gas.at) == (7.25, 60, NOW + 5 * SECOND)
+    later = entry.preview(store, "AB", NOW + 70 * SECOND, line("ph 7.28")).value
+    assert later.questions == ()
+    assert later.line.at == NOW + 70 * SECOND
+
+
+def test_half_a_gas_beside_the_other_half_is_asked_about(store: Store) -> None:
+    log(store, "01:00 ph 7.25")
+    shown = entry.preview(store, "AB", NOW, line("01:03 paco2 60")).value
+    told = " ".join(sentence(q) for q in shown.questions)
+    assert told == (
+        "The gas of 28-Mar-2026 01:00 has pH and no PaCO2. If both are of one sample, leave and log this with the time "
+        "of that one before it."
+    )
+    log(store, "01:00 paco2 60")
+    assert len(store.episode("A").gases) == 1
 
 
 def test_a_gas_very_unlike_the_last_asks_whose_it_is(store: Store) -> None:

@@ -164,6 +164,9 @@ def test_the_settings_in_force_are_those_of_the_lines_own_moment():
         ("02:40 rr 20", BILEVEL, "time.not_yet"),
         ("03.00 rr 20", BILEVEL, "line.time_form"), ("0300 rr 20", BILEVEL, "line.time_form"),
         ("27-Mar 23:00 rr 20", BILEVEL, "line.time_form"), ("2026-03-28T03:00 rr 20", BILEVEL, "line.time_form"),
+        ("ipap +4", BILEVEL, "line.signed"), ("ps +2", BILEVEL, "line.signed"), ("fio2 +10%", BILEVEL, "line.signed"),
+        ("rr -4", BILEVEL, "line.signed"), ("paco2 +60", BILEVEL, "line.signed"), ("o2 +2 l", BILEVEL, "line.signed"),
+        ("16/+6", BILEVEL, "line.word_unknown"),
         ("25:10 rr 20", BILEVEL, "time.unreadable"), ("note", BILEVEL, None),
     ],
 )  # fmt: skip
@@ -174,6 +177,11 @@ def test_what_cannot_be_is_refused_by_name(text, in_force, key):
     with pytest.raises(RecordError) as refused:
         read(text, in_force)
     assert refused.value.message.key == key
+
+
+def test_a_base_excess_bears_its_sign():
+    assert values("be +3.2")["be"] == 3.2
+    assert values("be -6")["be"] == -6
 
 
 @pytest.mark.parametrize(
