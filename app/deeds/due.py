@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from app.deeds.doer import Doer
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
+from app.session.failure import Failure
 from core.judgement.shapes import DueFigure
 
 if TYPE_CHECKING:
@@ -49,11 +50,17 @@ class DueDeeds(Doer):
         from app.operations import due
 
         request = due.DueRequest(episode, what, words, reason)
-        failed = self.asking.failed if self.asking is not None else self.window.show_failure
-        self.model.ask(due.close, request, done=self._closed, failed=failed)
+        self.model.ask(due.close, request, done=self._closed, failed=self._not_closed)
+
+    def _not_closed(self, failure: Failure) -> None:
+        """Said where it was asked, and in the window where that was left before the answer came."""
+        if self.asking is not None:
+            self.asking.failed(failure)
+        if self.asking is None or not self.asking.isVisible():
+            self.window.show_failure(failure)
 
     def _closed(self, outcome: Outcome[Recorded]) -> None:
-        if self.asking is not None:
+        if self.asking is not None and not self.asking.is_filled_in:
             self.asking.accept()
             self.asking.deleteLater()
             self.asking = None

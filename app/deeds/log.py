@@ -11,6 +11,7 @@ from app.keeping.keeper import Keeping
 from app.operations import flag as flag_operations
 from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
+from app.session.failure import Failure
 from app.ward.lane_words import strongest_flag
 from app.ward.moves import labels_told_apart
 from app.window.shell import Shell
@@ -90,11 +91,17 @@ class LogDeeds(FormDeeds):
 
     def _settle(self, episode: str, flag: FlagFigure, reason: str) -> None:
         request = flag_operations.FlagRequest(episode, flag.flag_id, reason)
-        self.model.ask(flag_operations.settle, request, done=self._flag_settled, failed=self._settling.failed)
+        self.model.ask(flag_operations.settle, request, done=self._flag_settled, failed=self._not_settled)
+
+    def _not_settled(self, failure: Failure) -> None:
+        """Said where it was asked, and in the window where that was left before the answer came."""
+        self._settling.failed(failure)
+        if not self._settling.isVisible():
+            self.window.show_failure(failure)
 
     def _flag_settled(self, outcome: Outcome[Recorded]) -> None:
-        self._settling.accept()
-        self._settling.deleteLater()
+        if not self._settling.is_filled_in:
+            self._settling.accept()
         self._flag_said(outcome)
 
     def _flag_said(self, outcome: Outcome[Recorded]) -> None:

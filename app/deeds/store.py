@@ -244,7 +244,12 @@ class StoreDeeds(Doer):
             return
         self._changing = ChangePassphraseDialog(self.change_passphrase, self.window.theme, self.window)
         self._changing.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self._changing.finished.connect(self._left)
         self._changing.open()
+
+    def _left(self, _result: int) -> None:
+        """Left, perhaps before the answer came: that is told all the same, and a new recovery code is shown."""
+        self._changing = None
 
     def change_passphrase(self, secret: str, new: str, new_code: bool) -> None:
         """Change it; the dialog stays until that is done."""
@@ -254,9 +259,8 @@ class StoreDeeds(Doer):
         self.model.ask(passphrase.change, request, done=self._changed, failed=self._not_changed)
 
     def _changed(self, outcome: Outcome[str]) -> None:
-        if self._changing is not None:
+        if self._changing is not None and not self._changing.is_filled_in:
             self._changing.accept()
-            self._changing = None
         self.window.say(self.tr("The passphrase was changed. Backups made before keep the old one."))
         if outcome.value:
             self._codes.show(outcome.value)
@@ -264,3 +268,5 @@ class StoreDeeds(Doer):
     def _not_changed(self, failure: Failure) -> None:
         if self._changing is not None:
             self._changing.failed(failure)
+        else:
+            self.window.show_failure(failure)

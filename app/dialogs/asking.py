@@ -111,6 +111,11 @@ class AskingDialog(FittedDialog):
         """What the accepting button does; the usual one closes the dialog."""
         self.accept()
 
+    @property
+    def is_filled_in(self) -> bool:
+        """Whether a person is filling it in: an answer that comes now is of one that was left before."""
+        return self.isVisible() and self.go.isEnabled()
+
     def say(self, text: str) -> None:
         """Say something over the buttons; "" takes it back."""
         self.wrong.setText(text)

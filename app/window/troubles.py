@@ -27,9 +27,10 @@ class Troubles(QObject):
         back to the first page, with what can be done there."""
         window = self._window
         text = sentence(failure.message, window.reader)
-        if failure.message.key in ASK_PASSPHRASE:
+        opening = window.opened is not None and not window.opened.feed.is_ready
+        if opening and failure.message.key in ASK_PASSPHRASE:
             self._ask_passphrase(text if failure.message.key == "key.wrong_passphrase" else "")
-        elif window.opened is not None and not window.opened.feed.is_ready and not failure.is_ours:
+        elif opening and not failure.is_ours:
             window.close_model()
             window.show_first_page()
             if window.first is not None:

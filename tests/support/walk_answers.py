@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import partial
 from pathlib import Path
 from random import Random
 from typing import TYPE_CHECKING
@@ -54,19 +55,20 @@ class Answerer:
             return
         dialog = QApplication.activeModalWidget()
         self._count += 1
-        if isinstance(dialog, QDialog):
-            if self._count > MOST:
-                self._walker.say(f"  leaves {type(dialog).__name__}")
-                dialog.reject()
-            else:
-                self._answer(dialog)
+        if isinstance(dialog, QDialog):  # an answer may bring up another dialog, which is then looked for here
+            QTimer.singleShot(0, partial(self._answer, dialog))
         elif self._count > MOST:  # something else is waited for: a drag
             target = QApplication.focusWidget() or self._walker.window
             QTest.keyClick(target, Qt.Key.Key_Escape)
 
     def _answer(self, dialog: QDialog) -> None:
         chance = self._chance
-        if chance.random() < 0.06:
+        if not self._walker.lives(dialog) or QApplication.activeModalWidget() is not dialog:
+            return
+        if self._count > MOST:
+            self._walker.say(f"  leaves {type(dialog).__name__}")
+            dialog.reject()
+        elif chance.random() < 0.06:
             self._walker.say(f"  meanwhile of {type(dialog).__name__}: locks")
             self._walker.window.keeping.locking.idle()
         elif chance.random() < 0.06:

@@ -29,7 +29,7 @@ ABOUT_ONE = frozenset({
     correction.undo, device_span.record,
 })  # fmt: skip
 """What records for the patient in hand."""
-SAID_BY_THE_PLATFORM = "This plugin does not support propagateSizeHints"
+SAID_BY_THE_PLATFORM = "This plugin does not support"
 
 
 class Watch:
