@@ -68,7 +68,8 @@ def lacking(gas: GasFigure, needs: Iterable[str]) -> tuple[str, ...]:
 def not_settled(seen: Observed, marker: str, evidence: Iterable[Message]) -> Message | None:
     """Why the newest gas, newer than those an open flag rests on, left the flag as it was; None where none is newer.
 
-    `because`: missing, venous, doubtful, off support, or no answer (it lies outside what the marker asks).
+    `because`: missing, venous, doubtful, off support, outside (a score that is not made for what the gas shows), or
+    no answer (it lies outside what the marker asks).
     """
     needs, gas = NEEDS.get(marker), seen.newest_gas
     if needs is None or gas is None:
@@ -80,8 +81,10 @@ def not_settled(seen: Observed, marker: str, evidence: Iterable[Message]) -> Mes
     score = seen.ctx.hacor_at_gases.get(gas.at) if marker.startswith("hacor") else None
     missing = score.missing if score is not None else lacking(gas, needs)
     venous = gas.site == "venous" and marker not in ANY_SAMPLE
+    outside = score is not None and score.population == "outside" and "population" not in score.reasons
     because = (
-        "venous" if venous else "missing" if missing else "doubtful" if gas.in_doubt
+        "venous" if venous else "outside" if outside
+        else "missing" if missing else "doubtful" if gas.in_doubt
         else "off support" if gas.off_support else "no answer"
     )  # fmt: skip
     values: dict[str, Value] = {"gas_at": gas.at, "because": because,

@@ -74,7 +74,8 @@ def pf_low_at_1h(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
         minutes = gas.at // MINUTE - start.anchor_at // MINUTE
         if low <= minutes <= high and (nearest is None or abs(minutes - 60) < abs(nearest - 60)):
             nearest = minutes
-            met = gas.pf_mmHg <= limit and inside(seen, rule.population, gas.at)
+            fits = inside(seen, rule.population, gas.at)
+            met = None if gas.pf_mmHg <= limit and not fits else gas.pf_mmHg <= limit
             told = (say.value_is("pf", gas.pf_mmHg, say.AT_MOST, limit, gas.at),
                     say.timing("start", start.anchor_at, minutes), *say.gas_doubts(gas))  # fmt: skip
             points.append(Point(gas.at, met, told))

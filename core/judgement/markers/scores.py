@@ -35,12 +35,13 @@ def hacor_limit_passed(score: ScoreFigure, limit: float) -> bool:
     return score.lowest is not None and score.lowest > limit
 
 
-def _answers(score: ScoreFigure, limit: float) -> bool:
-    """Whether a score tells if its limit is passed, and in whom: a range that holds the limit does not, nor one of a
-    gas without the P/F, pH or PaCO2 that its population asks for. Surely at or below the limit always does."""
+def _answers(score: ScoreFigure, limit: float, *, fits: bool) -> bool:
+    """Whether a score tells if its limit is passed, and in whom: a range that holds the limit does not, nor points over
+    it of a patient whom the score was not made for (a PaCO2 that rises ends no flag), nor those of a gas without the
+    P/F, pH or PaCO2 that its population asks for. Surely at or below the limit always does."""
     if score.highest is None or score.highest <= limit:
         return True
-    return "population" not in score.reasons and (score.population == "outside" or hacor_limit_passed(score, limit))
+    return fits and "population" not in score.reasons and hacor_limit_passed(score, limit)
 
 
 def hacor_above_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -69,12 +70,13 @@ def hacor_updated_above_10_5(seen: Observed, rule: MarkerRule) -> Iterable[Spell
     for gas, _, minutes in _hacor(seen):
         score = hacor_updated_at(seen.ctx, gas)
         over = hacor_limit_passed(score, limit)
-        if (over and not any(low <= m <= high for m in minutes)) or not _answers(score, limit):
+        fits = score.population == "inside" and inside(seen, rule.population, gas.at)
+        heard = fits or rule.outside == "remark"
+        if (over and not any(low <= m <= high for m in minutes)) or not _answers(score, limit, fits=heard):
             points.append(Point(gas.at, None))
             continue
-        fits = score.population == "inside" and inside(seen, rule.population, gas.at)
         told = (_score_told("hacor_updated", score, limit, gas.at), *say.gas_doubts(gas)) if over else ()
-        points.append(Point(gas.at, over and (fits or rule.outside == "remark"), told, not fits))
+        points.append(Point(gas.at, over, told, not fits))
     return from_gases(seen, points)
 
 
@@ -85,11 +87,11 @@ def _score_spells(seen: Observed, rule: MarkerRule, timely: Callable[[list[float
         fits = score.population == "inside" and inside(seen, rule.population, gas.at)
         outside = score.population == "outside" or not fits
         over = hacor_limit_passed(score, limit)
-        if (over and not timely(minutes)) or not _answers(score, limit):
+        heard = fits or rule.outside == "remark"
+        if (over and not timely(minutes)) or not _answers(score, limit, fits=heard):
             points.append(Point(gas.at, None))
             continue
-        shown = over and (fits or rule.outside == "remark")
-        points.append(Point(gas.at, shown, _told(gas, score, limit) if shown else (), outside))
+        points.append(Point(gas.at, over, _told(gas, score, limit) if over else (), outside))
     return from_gases(seen, points)
 
 

@@ -113,8 +113,21 @@ def test_a_score_that_became_a_range_with_its_limit_keeps_the_flag():
     assert met("hacor_above_5", later.replace("rr 20 hr 90\n", "rr 20 hr 90 gcs 15\n")) == "02:00-06:00"
 
 
-def test_acute_hypercapnia_is_outside_the_scores_population_without_a_pf_too():
-    assert met("hacor_8_or_more", FAILING + "05:00 ph 7.28 paco2 60") == "02:00-05:00"
+@pytest.mark.parametrize("more", ["", " pao2 70 site arterial rr 41 hr 125 gcs 14"])
+def test_a_paco2_that_rises_ends_no_flag_of_a_score_that_is_not_made_for_it(more):
+    """A patient in whom acute hypercapnia comes on top is worse off: no flag may go for that."""
+    log = FAILING + "05:00 ph 7.28 paco2 60" + more
+    assert met("hacor_8_or_more", log) == "02:00-"
+    (flag,) = [f for f in flags(log, "05:10") if f.marker == "hacor_8_or_more"]
+    assert flag.state == "raised"
+    said = {m.key: m.values for m in flag.evidence}["evidence.not_settled"]
+    assert (said["gas_at"], said["because"]) == (at("05:00"), "outside")
+
+
+def test_few_points_end_it_in_anybody():
+    assert met("hacor_8_or_more", FAILING + "05:00 ph 7.34 paco2 47 pao2 180 site arterial rr 20 hr 80 gcs 15") == (
+        "02:00-05:00"
+    )
 
 
 def test_an_open_flag_says_when_its_own_values_grew_old():
