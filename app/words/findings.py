@@ -45,8 +45,8 @@ GAS: Final[dict[str, str]] = {
     "gas.negative_gradient":
         "The A-a gradient would be {aa:0} mmHg, which cannot be: FiO2 {fio2:fraction} or a pressure is wrong.",
     "gas.rest_of":
-        "The gas of {at:time} has {has:name} and no {channel:name}. If both are of one sample, leave and log this with "
-        "the time of that one before it.",
+        "The gas of {at:time} has {has:name} and no {channel:name}. If both are of one sample, leave and log this "
+        "with the time of that one before it.",
     "gas.unlike_last":
         "Very unlike the gas of {at:time}[[: pH {ph:2}, there {ph_then:2}]][[; PaCO2 {paco2:gas}, there "
         "{paco2_then:gas}]][[; bicarbonate by both {hco3:0}, there {hco3_then:0} mmol/L]]. Is it this patient's?",

@@ -37,7 +37,8 @@ EVIDENCE: Final[dict[str, str]] = {
         "{at:time}.",
     "evidence.not_settled": "Not judged again by the gas of {gas_at:time}[[ (pH {ph:2})]]: "
         "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;off support=it was drawn off support;"
-        "outside=its score is made for other patients than this gas shows;no answer=it neither meets nor ends it}[[{missing:list} missing]].",
+        "outside=its score is made for other patients than this gas shows;"
+        "no answer=it neither meets nor ends it}[[{missing:list} missing]].",
     "evidence.off_support": "This gas was drawn off support.",
     "evidence.on_oxygen": "On FiO2 {fio2:fraction}.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
