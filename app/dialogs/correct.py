@@ -197,6 +197,7 @@ class CorrectDialog(DraftedDialog):
         do: dict[Act, Callable[..., Outcome[Recorded]]]
         do = {Act.WITHDRAW: correction.withdraw, Act.MOVE: correction.move, Act.CORRECT: correction.correct}
         self._model.ask(do[self.act.currentData()], self._sent, done=self._done, failed=self._failed)
+        self.is_recording = True
 
     def _right(self, found: Entry) -> correction.Request:
         act, reason = self.act.currentData(), self.reason.text()
@@ -227,13 +228,14 @@ class CorrectDialog(DraftedDialog):
         return typed_near(text, found.at, self._model.session.now(), self._reader.zone)
 
     def _done(self, outcome: Outcome[Recorded]) -> None:
+        self.is_recording = False
         self.recorded.emit(outcome.value, self._told(outcome.value))
         self.accept()
 
     def _told(self, made: Recorded) -> str:
         """What was done to which values, of which moment, and for whom."""
         by_id = {s.entry.id: s.entry for s in self._record.standing}
-        olds = [by_id[e.replaces] for e in made.entries]
+        olds = [by_id.get(e.replaces, e) for e in made.entries]  # another may have added to the gas meanwhile
         what = ", ".join(named_value(e, self._reader) for e in olds)
         new = ", ".join(named_value(e, self._reader) for e in made.entries)
         told = {
@@ -248,6 +250,7 @@ class CorrectDialog(DraftedDialog):
         )  # fmt: skip
 
     def _failed(self, failure: Failure) -> None:
+        self.is_recording = False
         if failure.message.key == "line.unconfirmed" and self._sent is not None:
             if self._still_sent():  # else the question is about what no longer stands there
                 self._model.ask(correction.correction_questions, self._sent, done=self._asked, failed=self._failed)

@@ -206,8 +206,10 @@ class DeviceSpanDialog(DraftedDialog):
             return
         self.go.setEnabled(False)
         self._model.ask(operations.record, request, done=self._recorded, failed=self.failed)
+        self.is_recording = True
 
     def _recorded(self, outcome: Outcome[Recorded]) -> None:
+        self.is_recording = False
         self.recorded.emit(outcome.value)
         for line in (self.start, self.end, self.minutes, self.reason):
             line.clear()
@@ -227,4 +229,5 @@ class DeviceSpanDialog(DraftedDialog):
 
     def failed(self, failure: Failure) -> None:
         """Say why it was refused."""
+        self.is_recording = False
         self.refuse(sentence(failure.message, self._reader))

@@ -17,6 +17,15 @@ class DraftedDialog(AskingDialog):
     changed = Signal()
     """A field was edited."""
     _opened_as: Mapping[str, str] | None = None
+    is_recording = False
+    """What was sent is on its way: whoever leaves now would believe that nothing was recorded."""
+
+    def reject(self) -> None:
+        """Leave, but not before the answer to what was sent."""
+        if self.is_recording:
+            self.say(self.tr("It is being recorded. Leave once it stands here what came of it."))
+        else:
+            super().reject()
 
     def begin_draft(self, *names: str) -> None:
         """What stands in these fields now, in all at first, is not typed by anybody."""

@@ -58,6 +58,7 @@ class PreviewedForm(FittedDialog):
         self._slow = ReadingTime(self._say_reading, self)
         self.settle = SettleTime()
         self._sent: object = None
+        self._is_recording = False
         self.title = QLabel(title)
         self.title.setProperty("role", "title")
         self.what = QLabel()
@@ -254,7 +255,7 @@ class PreviewedForm(FittedDialog):
 
     def refused(self, failure: Failure) -> None:
         """What the fields say cannot be recorded."""
-        self._awaited, self._pressed_early, self.asking = False, False, False
+        self._awaited, self._pressed_early, self.asking, self._is_recording = False, False, False, False
         self.go.setEnabled(False)
         self.say(f"<b>{escape(self.tr('Not recorded.'))}</b> {escape(sentence(failure.message, self.reader()))}")
 
@@ -292,10 +293,19 @@ class PreviewedForm(FittedDialog):
             self.say(escape(self.tr("Nobody is signed in. Leave the form: Ctrl+I says who you are.")))
             return
         self.go.setEnabled(False)
+        self._is_recording = True
         self.ask_record(self._sent, confirmed=confirmed)
+
+    def reject(self) -> None:
+        """Leave, but not before the answer: whoever left would believe that nothing was recorded."""
+        if self._is_recording:
+            self.say(escape(self.tr("It is being recorded. Leave once it stands here what came of it.")))
+        else:
+            super().reject()
 
     def was_recorded(self, outcome: Outcome[Any]) -> None:
         """It was recorded."""
+        self._is_recording = False
         self.recorded.emit(outcome.value)
         self.accept()
 

@@ -4,6 +4,8 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QComboBox
 
 from app.dialogs.correct import Act, CorrectDialog, Of
+from app.operations import entry
+from storage.store import Store
 from tests.support.open_window import NOW, dialog_of, settled, until
 
 
@@ -142,6 +144,36 @@ def test_a_gas_moves_whole_says_to_whom_and_one_undo_brings_it_back(qtbot, windo
 
 def gas_count(window, key):
     return len(window.feed.answers[key].record.gases)
+
+
+def test_a_gas_to_which_another_program_has_added_meanwhile_is_told_of_whole(qtbot, window):
+    """The dialog does not know the new value, which goes with its gas all the same."""
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "pH", "7.24")
+    with Store.open(window.model.session.store_path) as store:
+        entry.log_line(store, "ZZ", NOW, entry.LineRequest("bed-7", "03:05 gas_fio2 35%", "Europe/London", True))
+    dialog.act.setCurrentIndex(dialog.act.findData(Act.WITHDRAW))
+    dialog.reason.setText("another patient's")
+    dialog.go.click()
+    until(qtbot, lambda: not dialog.isVisible())
+    assert window.strip.plain().startswith("Withdrawn for Bed 7: pH 7.24")
+    assert "FiO2" in window.strip.plain()
+    assert window.strip.can_undo
+
+
+def test_nobody_leaves_while_it_is_being_recorded(qtbot, window):
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "pH", "7.24")
+    dialog.value.setText("7.34")
+    dialog.reason.setText("read wrong")
+    dialog.go.click()
+    dialog.reject()
+    assert dialog.isVisible()
+    assert "being recorded" in dialog.wrong.text()
+    until(qtbot, lambda: not dialog.isVisible())
+    settled(qtbot, window)
+    assert ph_of(window) == 7.34
+    assert window.strip.plain().startswith("Corrected for Bed 7")
 
 
 def test_one_value_of_a_gas_alone_is_asked_about(qtbot, window):

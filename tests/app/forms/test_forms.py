@@ -11,7 +11,9 @@ from app.forms.entry_form import spoken as typed_by_hand
 from app.forms.gas_form import GasForm
 from app.forms.settings_form import SettingsForm
 from app.forms.vitals_form import VitalsForm
+from app.session.failure import Failure
 from core.record.log_line import read_line
+from core.record.message import Message
 from core.record.settings import Settings
 from tests.support.open_window import make_store, open_window, settled, until
 
@@ -335,3 +337,29 @@ def test_nobody_signed_in_records_nothing(qtbot, window):
     assert "Nobody is signed in" in form.plain()
     assert window.model.session.head == head
     form.reject()
+
+
+def test_escape_after_enter_does_not_leave_before_the_answer(qtbot, window):
+    """What is recorded is told of and can be undone, however quickly the form was left."""
+    form = opened(qtbot, window, Key.Key_F10, SettingsForm)
+    qtbot.keyClick(form.fields["ipap"].box, Key.Key_Up)
+    settled(qtbot, window)
+    qtbot.keyClick(form, Key.Key_Return)
+    qtbot.keyClick(form, Key.Key_Escape)
+    assert form.isVisible()
+    assert "being recorded" in form.plain()
+    until(qtbot, lambda: record(window).number("ipap").v[-1] == 19)
+    assert "Recorded for Bed 7" in window.strip.plain()
+    assert window.strip.can_undo
+    assert not window.findChildren(SettingsForm)
+
+
+def test_a_form_that_was_refused_can_be_left(qtbot, window):
+    form = opened(qtbot, window, Key.Key_F10, SettingsForm)
+    qtbot.keyClick(form.fields["ipap"].box, Key.Key_Up)
+    settled(qtbot, window)
+    qtbot.keyClick(form, Key.Key_Return)
+    form.refused(Failure(Message("store.read_only")))
+    qtbot.keyClick(form, Key.Key_Escape)
+    assert not form.isVisible()
+    settled(qtbot, window)
