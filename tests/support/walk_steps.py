@@ -137,15 +137,16 @@ def fills(walker: Walker, chance: Random) -> str:
         write(box.lineEdit(), f"{low + (high - low) * chance.random():.{box.decimals()}f}", anew=True)
     for line in chance.sample(words, min(len(words), chance.randint(0, 2))):
         write(line, chance.choice(TYPED), anew=True)
-    enter = partial(press_enter_in, walker, dialog)
-    walker.after(150, [enter] * chance.choice((1, 2, 2)), apart=chance.choice((10, 200)))
+    enter, escape = (partial(press_in, walker, dialog, key) for key in (Key.Key_Return, Key.Key_Escape))
+    leaving = [escape] if chance.random() < 0.25 else []
+    walker.after(150, [enter] * chance.choice((1, 2, 2)) + leaving, apart=chance.choice((0, 10, 200)))
     return ""
 
 
-def press_enter_in(walker: Walker, dialog: QDialog) -> None:
-    """Enter in a dialog, if it still takes the keys."""
+def press_in(walker: Walker, dialog: QDialog, key: Qt.Key) -> None:
+    """A key in a dialog, if it still takes the keys."""
     if walker.lives(dialog) and front_dialog() is dialog:
-        QTest.keyClick(dialog, Key.Key_Return)
+        QTest.keyClick(dialog, key)
 
 
 def clicks(walker: Walker, chance: Random) -> str:

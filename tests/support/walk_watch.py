@@ -17,6 +17,7 @@ from PySide6.QtCore import QtMsgType, qInstallMessageHandler
 from PySide6.QtWidgets import QApplication, QDialog, QWidget
 
 from app.operations import correction, device_span, due, entry, flag
+from app.operations.outcome import Outcome
 from app.operations.recording import Recorded
 from app.session.model import SessionModel
 from app.strip.log_strip import LogStrip
@@ -29,6 +30,9 @@ ABOUT_ONE = frozenset({
     correction.undo, device_span.record,
 })  # fmt: skip
 """What records for the patient in hand."""
+OTHERS = "ZZ"
+"""Who logs in other programs."""
+BY_ITSELF = ("flag.transitions",)
 SAID_BY_THE_PLATFORM = "This plugin does not support"
 
 
@@ -42,6 +46,9 @@ class Watch:
         self.recorded = 0
         self._acknowledged: list[tuple[Path, Recorded]] = []
         self._previewed: Any = None
+        self._model: SessionModel | None = None
+        self._untold: dict[str, str] = {}
+        """What a person recorded here and was not told of yet: how, by the id of its last entry."""
 
     def fault(self, told: str) -> None:
         """Keep a fault and say it at once: a crash may come next."""
@@ -86,6 +93,20 @@ class Watch:
             remember(strip, recorded)
 
         LogStrip.remember = heard  # type: ignore[method-assign]
+        undone, append = LogStrip._undone, Store.append
+
+        def heard_undone(strip: LogStrip, outcome: Outcome[Recorded]) -> None:
+            self._acknowledged.append((strip._model.session.store_path, outcome.value))
+            undone(strip, outcome)
+
+        def heard_append(store: Store, entries: Any, *, by: str, operation: str, **more: Any) -> Any:
+            receipt = append(store, entries, by=by, operation=operation, **more)
+            if by != OTHERS and operation not in BY_ITSELF:
+                self._untold[receipt.ids[-1]] = f"{operation} by {by}: {entries}"
+            return receipt
+
+        LogStrip._undone = heard_undone  # type: ignore[method-assign]
+        Store.append = heard_append  # type: ignore[method-assign]
 
     def _asked(self, model: SessionModel, operation: Any, request: Any) -> None:
         window = self.window
@@ -182,6 +203,14 @@ class Watch:
     def _look_at_store(self) -> None:
         """Each recording that was acknowledged stands in the ledger, as another connection reads it."""
         told, self._acknowledged = self._acknowledged, []
+        assert self.window is not None
+        if self._model is not self.window.model:  # what was on its way when a store was closed is told nobody
+            self._model, self._untold = self.window.model, {}
+        for recorded in (r for _, r in told):
+            self._untold.pop(recorded.ids[-1], None)
+        for how in self._untold.values():
+            self.fault(f"recorded, and nobody was told: {how}")
+        self._untold.clear()
         for path in {path for path, _ in told if path.exists()}:
             with Store.open(path, passphrase=self._secret_of(path), read_only=True) as store:
                 for recorded in (r for p, r in told if p == path):
