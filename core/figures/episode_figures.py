@@ -51,8 +51,9 @@ def record_stage(episode: Episode, as_of: Instant, policy: Policy) -> Context:
 
 
 def gas_stage(ctx: Context) -> Context:
-    """Every gas by itself."""
-    return replace(ctx, gases=gas_figures(ctx.episode.gases, ctx.settings, ctx.support, ctx.policy))
+    """Every sample by itself, and which of them are blood gases."""
+    samples = gas_figures(ctx.episode.gases, ctx.settings, ctx.support, ctx.policy)
+    return replace(ctx, samples=samples, gases=tuple(g for g in samples if g.is_blood_gas))
 
 
 def response_stage(ctx: Context) -> Context:

@@ -43,6 +43,9 @@ class Context:
     settings: SettingsInForce
     support: SupportTime
     gases: tuple[GasFigure, ...] = ()
+    """The blood gases: samples with a pH, a PCO2 or a PO2. The rest judge nothing."""
+    samples: tuple[GasFigure, ...] = ()
+    """Every sample, a lone lactate among them."""
     anchors: tuple[Anchor, ...] = ()
     responses: tuple[ResponseFigure, ...] = ()
     pf: RatioFigure = field(default_factory=RatioFigure)

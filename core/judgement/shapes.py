@@ -101,6 +101,11 @@ class GasFigure:
     """The patient's, nearest to the gas; None while the policy reports gases uncorrected (the default)."""
 
     @property
+    def is_blood_gas(self) -> bool:
+        """Whether it holds anything that a gas is judged by. A lone lactate is the newest of nothing, and no baseline."""
+        return not (self.ph is None and self.paco2_mmHg is None and self.pao2_mmHg is None)
+
+    @property
     def in_doubt(self) -> bool:
         """Too doubtful to call anything better, or to end a flag."""
         return self.unconfirmed or self.implausible is not None

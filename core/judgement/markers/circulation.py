@@ -52,7 +52,7 @@ def lactate_above_4(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
 
 def _lactate(seen: Observed, rule: MarkerRule) -> Iterator[Point]:
     limit = rule.limits["lactate"]
-    for gas in seen.ctx.gases:
+    for gas in seen.ctx.samples:
         if gas.lactate_mmol_L is not None:
             told = say.value_is("lactate", gas.lactate_mmol_L, say.ABOVE, limit, gas.at)
             yield Point(gas.at, gas.lactate_mmol_L > limit, (told, *_after_beta_agonist(seen, rule, gas)))
@@ -62,7 +62,7 @@ def lactate_rising(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """Lactate above 2 mmol/L and higher than on the sample before it."""
     points = []
     before: GasFigure | None = None
-    for gas in seen.ctx.gases:
+    for gas in seen.ctx.samples:
         now = gas.lactate_mmol_L
         if now is None:
             continue

@@ -71,10 +71,11 @@ def not_settled(seen: Observed, marker: str, evidence: Iterable[Message]) -> Mes
     `because`: missing, venous, doubtful, off support, outside (a score that is not made for what the gas shows), or
     no answer (it lies outside what the marker asks).
     """
-    needs, gas = NEEDS.get(marker), seen.newest_gas
+    needs = NEEDS.get(marker)
+    gas = seen.newest_sample if needs == _LACTATE else seen.newest_gas
     if needs is None or gas is None:
         return None
-    moments = {g.at for g in seen.ctx.gases}
+    moments = {g.at for g in seen.ctx.samples}
     rested = [at for m in evidence for k in ("at", "second_at") if (at := m.values.get(k)) in moments]
     if gas.at in rested or not rested:
         return None

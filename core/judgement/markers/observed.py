@@ -150,13 +150,18 @@ class Observed:
 
     @found_once
     def newest_gas(self) -> GasFigure | None:
-        """The newest sample of any site."""
+        """The newest blood gas of any site."""
         return self.ctx.gases[-1] if self.ctx.gases else None
+
+    @found_once
+    def newest_sample(self) -> GasFigure | None:
+        """The newest sample of any site, a lone lactate among them."""
+        return self.ctx.samples[-1] if self.ctx.samples else None
 
     @found_once
     def doubtful_gases(self) -> frozenset[Instant]:
         """The moments of the samples that hold what nobody confirmed, or what cannot belong together."""
-        return frozenset(g.at for g in self.ctx.gases if g.in_doubt)
+        return frozenset(g.at for g in self.ctx.samples if g.in_doubt)
 
     @found_once
     def by_moment(self) -> dict[Instant, GasFigure]:
