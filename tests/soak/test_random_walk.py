@@ -18,8 +18,16 @@ SEEDS = range(FIRST, FIRST + int(os.environ.get("LUFF_WALKS", "30")))
 STEPS = int(os.environ.get("LUFF_WALK_STEPS", "300"))
 
 
-@pytest.mark.parametrize("harsh", [False, True], ids=["usual", "garbage collected all the time"])
+HOW = {
+    "usual": (),
+    "garbage collected all the time": ("--harsh",),
+    "slow": ("--slow",),
+    "both": ("--harsh", "--slow"),
+}
+
+
+@pytest.mark.parametrize("how", HOW.values(), ids=HOW.keys())
 @pytest.mark.parametrize("seed", SEEDS)
-def test_nothing_goes_wrong_whatever_is_done(seed: int, harsh: bool) -> None:
-    walked = walk(seed, STEPS, harsh=harsh)
-    assert walked.code == 0, retold(walked, seed, STEPS, harsh=harsh)
+def test_nothing_goes_wrong_whatever_is_done(seed: int, how: tuple[str, ...]) -> None:
+    walked = walk(seed, STEPS, *how)
+    assert walked.code == 0, retold(walked, seed, STEPS, *how)

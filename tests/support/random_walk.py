@@ -1,16 +1,16 @@
 """A random walk through the window, in a program of its own: a crash is a finding and not the end of the tests.
 
-    python -m tests.support.random_walk SEED [--steps 200] [--only 3,17,40] [--harsh]
+    python -m tests.support.random_walk SEED [--steps 200] [--only 3,17,40] [--harsh] [--slow]
 
 Each step is settled by the seed and its number alone, so that a walk that failed can be walked again with a part of
-its steps (`--only`). It says each step before it does it. `--harsh`: garbage is collected all the time.
+its steps (`--only`). It says each step before it does it. `--harsh`: garbage is collected all the time. `--slow`: the
+worker takes its time, and now and then the disk is full.
 """
 
 from __future__ import annotations
 
 import argparse
 import faulthandler
-import gc
 import os
 import subprocess
 import sys
@@ -30,12 +30,6 @@ if TYPE_CHECKING:
 
 ROOT = Path(__file__).parents[2]
 HANG_S = 120
-QUICK = {"app.session.model": {"POLL_MS": 120, "TICK_MS": 400}, "app.keeping.chain_watch": {"FIRST_MS": 300},
-            "app.keeping.backups": {"FIRST_MS": 700}, "app.session.flag_keeper": {"EVERY_MS": 900},
-            "app.keeping.keeper": {"RETRY_MS": 300}, "app.keeping.notices": {"LOOK_MS": 500},
-            "app.keeping.form_drafts": {"AFTER_MS": 150}, "app.strip.settle_time": {"SETTLE_S": 0.15}}  # fmt: skip
-"""Clocks that run faster, so that what they do falls between steps."""
-HARSH_THRESHOLD, HARSH_MS = 50, 20
 
 
 @dataclass(frozen=True, slots=True)
@@ -46,8 +40,8 @@ class Walked:
     said: str
 
 
-def walk(seed: int, steps: int, *, only: str = "", harsh: bool = False) -> Walked:
-    """Walk in a program of its own."""
+def walk(seed: int, steps: int, *how: str) -> Walked:
+    """Walk in a program of its own; `how` as on the command line."""
     command = [
         sys.executable,
         "-X",
@@ -58,8 +52,7 @@ def walk(seed: int, steps: int, *, only: str = "", harsh: bool = False) -> Walke
         "--steps",
         str(steps),
     ]
-    command += ["--only", only] if only else []
-    command += ["--harsh"] if harsh else []
+    command += how
     env = {**os.environ, "QT_QPA_PLATFORM": "offscreen", "QT_SCALE_FACTOR": "1", "PYTHONPATH": str(ROOT)}
     ended = subprocess.run(
         command, check=False, cwd=ROOT, env=env, text=True, stdout=subprocess.PIPE, stderr=subprocess.STDOUT
@@ -67,9 +60,9 @@ def walk(seed: int, steps: int, *, only: str = "", harsh: bool = False) -> Walke
     return Walked(ended.returncode, ended.stdout)
 
 
-def retold(walked: Walked, seed: int, steps: int, *, harsh: bool = False) -> str:
+def retold(walked: Walked, seed: int, steps: int, *how: str) -> str:
     """A walk that failed: how it ended, how it is walked again, and every step of it."""
-    again = f"python -m tests.support.random_walk {seed} --steps {steps}{' --harsh' if harsh else ''}"
+    again = f"python -m tests.support.random_walk {seed} --steps {steps} {' '.join(how)}"
     return f"ended with {walked.code}; again: {again}\n{walked.said}"
 
 
@@ -303,33 +296,6 @@ class Walker:
         self.say(f"{len(self._numbers)} steps, {self.watch.recorded} entries acknowledged and found")
 
 
-def _quicken(harsh: bool) -> None:
-    """Clocks of the program run faster; garbage is collected all the time where that is asked."""
-    from importlib import import_module
-
-    for name, values in QUICK.items():
-        for constant, value in values.items():
-            assert hasattr(import_module(name), constant)
-            setattr(import_module(name), constant, value)
-    if harsh:
-        import_module("app.session.garbage").EVERY_MS = HARSH_MS
-        gc.set_threshold(HARSH_THRESHOLD)
-
-
-def _stay_inside(say: Callable[[str], None]) -> None:
-    """Nothing leaves the program: no other one is opened, and nothing is printed."""
-    import app.deeds.closing as closing
-
-    class Nobody:
-        @staticmethod
-        def openUrl(url: Any) -> bool:
-            assert url.isLocalFile(), url
-            say(f"  would open {Path(url.toLocalFile()).name}")
-            return True
-
-    closing.QDesktopServices = Nobody  # type: ignore[attr-defined,misc,assignment]
-
-
 def main() -> int:
     """Walk once, in this very program."""
     asked = argparse.ArgumentParser(description=__doc__)
@@ -337,37 +303,33 @@ def main() -> int:
     asked.add_argument("--steps", type=int, default=200)
     asked.add_argument("--only", default="")
     asked.add_argument("--harsh", action="store_true")
+    asked.add_argument("--slow", action="store_true")
     given = asked.parse_args()
     numbers = [int(n) for n in given.only.split(",")] if given.only else list(range(1, given.steps + 1))
     warnings.simplefilter("error")
     with tempfile.TemporaryDirectory() as folder:
-        for name in (
-            "HOME",
-            "LOCALAPPDATA",
-            "APPDATA",
-            *(f"XDG_{k}_HOME" for k in ("DATA", "CONFIG", "CACHE", "STATE")),
-        ):
-            os.environ[name] = folder
-        os.environ["TMPDIR"] = folder
-        tempfile.tempdir = None
-        return _walk_here(given.seed, numbers, Path(folder), given.harsh)
+        return _walk_here(given, numbers, Path(folder))
 
 
-def _walk_here(seed: int, numbers: Sequence[int], folder: Path, harsh: bool) -> int:
-    from tests.support import nothing_left
+def _walk_here(given: argparse.Namespace, numbers: Sequence[int], folder: Path) -> int:
+    from tests.support import nothing_left, walk_world
 
     nothing_left.see_timers()
-    from app.session import clock
+    walk_world.move_home(folder)
     from app.window.start import application
     from tests.support.walk_stores import make_secrets_cheap
 
     application()
     before = nothing_left.threads()
     make_secrets_cheap()
-    _quicken(harsh)
-    walker = Walker(seed, numbers, folder)
-    clock.real_now = lambda: walker.clock
-    _stay_inside(walker.say)
+    walk_world.quicken()
+    if given.harsh:
+        walk_world.collect_all_the_time()
+    if given.slow:
+        walk_world.slow_down(Random(given.seed))
+    walker = Walker(given.seed, numbers, folder)
+    walk_world.set_clock(lambda: walker.clock)
+    walk_world.stay_inside(walker.say)
     walker.run()
     faulthandler.cancel_dump_traceback_later()
     for left in nothing_left.left_behind(before):
