@@ -102,7 +102,7 @@ class GasFigure:
 
     @property
     def is_blood_gas(self) -> bool:
-        """Whether it holds anything that a gas is judged by. A lone lactate is the newest of nothing, and no baseline."""
+        """Whether it holds anything that a gas is judged by: a lone lactate is no baseline, and the newest of nothing."""
         return not (self.ph is None and self.paco2_mmHg is None and self.pao2_mmHg is None)
 
     @property

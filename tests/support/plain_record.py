@@ -16,6 +16,7 @@ RISK = ("copd", "obesity hypoventilation", "neuromuscular", "chest wall")
 NUMERIC = ("ipap", "epap", "cpap", "fio2", "o2_flow", "rate_set", "ti")
 WRITTEN = ("rr", "spo2", "hr", "gcs", "sbp", "temp", "acvpu", "gas_sent", "mask_off", "break_start")
 GAS = ("ph", "paco2", "pao2", "hco3", "lactate")
+OF_A_BLOOD_GAS = ("ph", "paco2", "pao2")
 KPA = 7.50062
 
 
@@ -228,7 +229,7 @@ class Log:
     @property
     def gases(self) -> list[Gas]:
         out = []
-        for at in sorted({m for c in GAS for m, _ in self.all(c)}):
+        for at in sorted({m for c in OF_A_BLOOD_GAS for m, _ in self.all(c)}):
             own = {c: v for m, c, v in self.rows if m == at}
             num = {c: float(own[c]) for c in (*GAS, "gas_fio2") if c in own}
             fio2 = num.get("gas_fio2", None if self.mask_is_off(at) else self.drawn_on(at))

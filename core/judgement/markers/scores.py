@@ -36,9 +36,9 @@ def hacor_limit_passed(score: ScoreFigure, limit: float) -> bool:
 
 
 def _answers(score: ScoreFigure, limit: float, *, fits: bool) -> bool:
-    """Whether a score tells if its limit is passed, and in whom: a range that holds the limit does not, nor points over
-    it of a patient whom the score was not made for (a PaCO2 that rises ends no flag), nor those of a gas without the
-    P/F, pH or PaCO2 that its population asks for. Surely at or below the limit always does."""
+    """Whether a score tells if its limit is passed, and in whom: a range that holds the limit does not, nor points
+    over it of a patient whom the score was not made for (a PaCO2 that rises ends no flag), nor those of a gas without
+    the P/F, pH or PaCO2 that its population asks for. Surely at or below the limit always does."""
     if score.highest is None or score.highest <= limit:
         return True
     return fits and "population" not in score.reasons and hacor_limit_passed(score, limit)

@@ -253,8 +253,8 @@ def test_half_a_gas_beside_the_other_half_is_asked_about(store: Store) -> None:
     shown = entry.preview(store, "AB", NOW, line("01:03 paco2 60")).value
     told = " ".join(sentence(q) for q in shown.questions)
     assert told == (
-        "The gas of 28-Mar-2026 01:00 has pH and no PaCO2. If both are of one sample, leave and log this with the time "
-        "of that one before it."
+        "The gas of 28-Mar-2026 01:00 has pH and no PaCO2. If both are of one sample, leave and log this with the "
+        "time of that one before it."
     )
     log(store, "01:00 paco2 60")
     assert len(store.episode("A").gases) == 1
