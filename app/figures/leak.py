@@ -45,6 +45,8 @@ def leak_rows(f: EpisodeFigures, make: RowMaker) -> Iterator[FigureRow]:
     yield _median(leak, make)
     yield _limit(leak, make)
     yield _over(leak, make)
+    if leak.readings_typed and leak.limit_L_per_min is not None:
+        yield _typed_over(leak, make)
     if leak.over_since is not None:
         lasts = (_how_long(f.as_of - leak.over_since, make),)
         yield FigureRow("leak_over_since", make.name("leak_over_since"), make.reader.time(leak.over_since),
@@ -96,11 +98,32 @@ def _over(leak: LeakFigure, make: RowMaker) -> FigureRow:
     minutes = leak.minutes_over_limit
     value = "" if minutes is None else formats.minutes(minutes)
     why = "" if value else make.say(leak.reasons.get("minutes_over_limit")) or make.tr("Not known")
-    name, counted = make.tr("Time over the leak limit"), tuple[str, ...]()
-    if value and leak.counted is not None:
-        first, last = (make.reader.time(at) for at in leak.counted)
-        counted = (make.tr("Counted from {first} to {last} only").format(first=first, last=last),)
+    counted = _counted(leak, make) if value else ()
+    if value and leak.sampled_in_part and leak.minutes_sampled is not None:
+        length = formats.minutes(leak.minutes_sampled)
+        counted += (make.tr("The device's samples cover {length} of it").format(length=length),)
+    name = make.tr("Time over the leak limit")
     return FigureRow("leak_minutes_over", name, value, notes=counted, why=why, inputs=_of_limit(leak, make))
+
+
+def _typed_over(leak: LeakFigure, make: RowMaker) -> FigureRow:
+    """How many of the readings that people typed were over the limit: none of them has a length."""
+    value = make.tr("{over} of {of} readings").format(over=leak.readings_typed_over, of=leak.readings_typed)
+    notes = (make.tr("Typed now and then: how long it was over is not known"), *_counted(leak, make))
+    if leak.readings_typed_over and leak.minutes_sampled is None:
+        rules = in_force().leak
+        asked = make.tr("Its flag asks for {n} of {m} min: not judged from typed readings")
+        n, m = (formats.trimmed(bound.value) for bound in (rules.over_minutes, rules.of_minutes))
+        notes += (asked.format(n=n, m=m),)
+    name = make.name("leak_readings_over")
+    return FigureRow("leak_readings_over", name, value, notes=notes, inputs=_of_limit(leak, make))
+
+
+def _counted(leak: LeakFigure, make: RowMaker) -> tuple[str, ...]:
+    if leak.counted is None:
+        return ()
+    first, last = (make.reader.time(at) for at in leak.counted)
+    return (make.tr("Counted from {first} to {last} only").format(first=first, last=last),)
 
 
 def _adjustment(leak: LeakFigure, at: Instant, make: RowMaker) -> FigureRow:

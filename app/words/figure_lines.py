@@ -357,14 +357,25 @@ class FigureLines:
         name = names.get(leak.definition or "", self.tr("Leak"))
         meant = "" if leak.definition else f"; {self.tr('what the device calls leak is not known')}"
         text = f"{name} {formats.fixed(leak.median_L_per_min, 0)} L/min ({taken}{meant})"
-        if leak.minutes_over_limit is not None and leak.limit_L_per_min is not None:
-            # a total leak's limit goes with the pressure: the one of now is not that of then
-            follows = leak.definition == "total"
-            over = self.tr("in that time {length} over its limit, now {limit} L/min" if follows
-                           else "in that time {length} over {limit} L/min")  # fmt: skip
-            length, limit = formats.minutes(leak.minutes_over_limit), formats.fixed(leak.limit_L_per_min, 0)
-            text += f"; {over.format(length=length, limit=limit)}"
-        return text
+        return text + "".join(f"; {part}" for part in self._over_limit(leak))
+
+    def _over_limit(self, leak: LeakFigure) -> Iterable[str]:
+        """How long the device's samples were over the limit; of typed readings how many, since none has a length."""
+        if leak.limit_L_per_min is None:
+            return
+        # a total leak's limit goes with the pressure: the one of now is not that of then
+        follows = leak.definition == "total"
+        limit = self.tr("its limit, now {limit} L/min" if follows else "{limit} L/min")
+        limit = limit.format(limit=formats.fixed(leak.limit_L_per_min, 0))
+        if leak.minutes_over_limit is not None:
+            over = self.tr("in that time {length} over {limit}")
+            yield over.format(length=formats.minutes(leak.minutes_over_limit), limit=limit)
+            if leak.sampled_in_part and leak.minutes_sampled is not None:
+                part = self.tr("the device's samples cover {length} of it")
+                yield part.format(length=formats.minutes(leak.minutes_sampled))
+        if leak.readings_typed:
+            typed = self.tr("{over} of {of} readings over {limit}, typed now and then")
+            yield typed.format(over=leak.readings_typed_over, of=leak.readings_typed, limit=limit)
 
     def sentences(self, messages: Iterable[Message]) -> str:
         """Messages in words, one after the other."""

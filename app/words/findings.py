@@ -116,8 +116,12 @@ COURSE: Final[dict[str, str]] = {
 TRENDS: Final[dict[str, str]] = {
     "leak.definition_not_known": "what the device calls leak is not known: a trend only, no limit",
     "leak.duty_assumed": "inspiration is taken as {share:fraction} of the breath",
+    "leak.flag_not_judged":
+        "Leak was over its limit in {over} of {of} readings, typed now and then: whether for {n} of {m} min, as its "
+        "flag asks, is not known.",
     "leak.meaning_changed": "what the device calls leak changed at {at:time}: only what came after counts",
     "leak.no_values": "no leak values",
+    "leak.typed_now_and_then": "readings typed now and then have no minutes",
     "leak.pressure_not_known": "the port's own leak is not known without pressures",
     "trend.few_points": "{points} points: too few to tell a trend from chance",
     "trend.fio2_not_known": "FiO2 not known at {at:time}",

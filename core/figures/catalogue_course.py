@@ -89,8 +89,15 @@ LEAK: Final = (
     ),
     _line(
         "leak_minutes_over", "Minutes over the leak limit", "min",
-        "time of the samples above the limit, in the span beside it", "definition", "common practice",
-        _LEAK_AT + "leak_figure", _LEAK + "test_unintentional_leak_over_its_limit", _DEFINED,
+        "time of the device's samples above the limit, in the span beside it", "definition", "common practice",
+        _LEAK_AT + "leak_figure", _LEAK + "test_unintentional_leak_over_its_limit",
+        _DEFINED + " None of typed readings alone: nobody knows how long one lasted.",
+    ),
+    _line(
+        "leak_readings_over", "Typed readings over the leak limit", "",
+        "how many of the readings that people typed are above the limit", "definition", "common practice",
+        _LEAK_AT + "leak_figure", _LEAK + "test_readings_typed_now_and_then_have_no_minutes_over_the_limit",
+        _DEFINED + " The leak flag asks for minutes: it is not judged from them.",
     ),
     _line(
         "leak_over_since", "Over the leak limit since", "", "start of the 10 of 12 minutes over that still last",

@@ -20,7 +20,7 @@ from core.judgement.due import due_items
 from core.judgement.expected_co2 import expected
 from core.judgement.flags import evaluate
 from core.judgement.gas_findings import gas_figures
-from core.judgement.leak_trend import leak_figure
+from core.judgement.leak_trend import leak_doubts, leak_figure
 from core.judgement.levers import levers
 from core.judgement.markers.observed import Observed
 from core.judgement.now import now_figure
@@ -133,6 +133,7 @@ def episode_figures(
         oxygenation=oxygenation_figure(ctx, walls),
         ventilation=ventilation_figure(ctx, walls),
         policy_hash=policy.hash,
+        warnings=leak_doubts(ctx.leak, policy.leak),
     )
 
 

@@ -12,6 +12,7 @@ from math import isnan
 import numpy as np
 
 from core.judgement.context import Context
+from core.judgement.policy_sections import LeakRules
 from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.shapes import LeakFigure, RatioFigure
 from core.judgement.sustained import Spell, spells
@@ -19,7 +20,7 @@ from core.judgement.trend import points_of, rates_at, slope_figure, span_start
 from core.record.episode import Series
 from core.record.instant import MINUTE, Instant
 from core.record.message import Message
-from core.record.samples import Times, Values
+from core.record.samples import Flags, Times, Values
 
 ASSUMED_DUTY = 1.0 / 3.0
 """Share of the breath spent on IPAP where inspiratory time or rate is not known (I:E 1:2; common practice)."""
@@ -114,20 +115,46 @@ def _over(ctx: Context, figure: LeakFigure, worn: Series, definition: str) -> Le
         reasons["assumption"] = Message("leak.duty_assumed", {"share": ASSUMED_DUTY})
     if isnan(limit[-1]):
         reasons["limit_L_per_min"] = Message("leak.pressure_not_known")
-    minutes = None
-    if len(worn) and not np.isnan(limit[:-1]).all():
-        stands = np.minimum(np.diff(np.append(worn.t, ctx.as_of)), LONGEST_SAMPLE)
-        minutes = float(stands[worn.v > limit[:-1]].sum() / MINUTE)
-    elif "limit_L_per_min" in reasons:
+    over, known = worn.v > limit[:-1], np.isfinite(limit[:-1])
+    minutes, sampled = _minutes_over(worn, over, known, ctx.as_of)
+    typed = int((worn.spot & known).sum())
+    if minutes is None and typed:
+        reasons["minutes_over_limit"] = Message("leak.typed_now_and_then")
+    elif minutes is None and "limit_L_per_min" in reasons:
         reasons["minutes_over_limit"] = reasons["limit_L_per_min"]
-    spell = _last_open(ctx, worn, limit[:-1])
+    spell = _last_open(ctx, worn.machine, limit[:-1][~worn.spot])
     return replace(
         figure,
         minutes_over_limit=minutes,
+        minutes_sampled=sampled,
+        readings_typed=typed,
+        readings_typed_over=int((worn.spot & over).sum()),
         limit_L_per_min=None if isnan(limit[-1]) else float(limit[-1]),
         over_since=spell.start if spell is not None else None,
         reasons=reasons,
     )
+
+
+def _minutes_over(worn: Series, over: Flags, known: Flags, as_of: Instant) -> tuple[float | None, float | None]:
+    """The time of the device's samples over their limit, and of all of them; None where there is none.
+
+    What a person typed is of its moment: nobody knows how long it lasted, so it has no minutes.
+    """
+    counts = ~worn.spot
+    if not (counts & known).any():
+        return None, None
+    t = worn.t[counts]
+    stands = np.minimum(np.diff(np.append(t, as_of)), LONGEST_SAMPLE)
+    return float(stands[over[counts]].sum() / MINUTE), float(stands[known[counts]].sum() / MINUTE)
+
+
+def leak_doubts(leak: LeakFigure, rules: LeakRules) -> tuple[Message, ...]:
+    """That the leak flag cannot be judged: readings typed now and then over the limit, and no device's samples."""
+    if not leak.readings_typed_over or leak.minutes_sampled is not None:
+        return ()
+    told = {"over": leak.readings_typed_over, "of": leak.readings_typed}
+    asked = {"n": int(rules.over_minutes.value), "m": int(rules.of_minutes.value)}
+    return (Message("leak.flag_not_judged", {**told, **asked}),)
 
 
 def _last_open(ctx: Context, worn: Series, limit: Values) -> Spell | None:

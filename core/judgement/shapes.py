@@ -11,7 +11,7 @@ from dataclasses import dataclass, field
 
 from core.judgement.derived import FigureInput, OxygenationFigure, VentilationFigure
 from core.judgement.response_shapes import ResponseFigure
-from core.record.instant import Instant
+from core.record.instant import MINUTE, Instant
 from core.record.message import Message
 
 Reasons = Mapping[str, Message]
@@ -159,6 +159,18 @@ class LeakFigure:
     """The first and the last sample of the newest median; None for a single value."""
     counted: tuple[Instant, Instant] | None = None
     """From when until when the time over the limit was counted: never told without it."""
+    minutes_sampled: float | None = None
+    """How many minutes of it the device's samples cover; None where there are none: then no minutes are told."""
+    readings_typed: int = 0
+    """Readings that people typed, of which nobody knows how long they lasted, and how many of them were over."""
+    readings_typed_over: int = 0
+
+    @property
+    def sampled_in_part(self) -> bool:
+        """Whether the device's samples leave more than a quarter of the counted span in the dark."""
+        if self.minutes_sampled is None or self.counted is None:
+            return False
+        return self.minutes_sampled < 0.75 * (self.counted[1] - self.counted[0]) / MINUTE
 
 
 @dataclass(frozen=True, slots=True)

@@ -6,10 +6,11 @@ from math import sqrt
 
 import pytest
 
-from core.judgement.leak_trend import leak_figure, leak_spells
+from core.judgement.leak_trend import leak_doubts, leak_figure, leak_spells
 from core.judgement.probable_breaks import probable_breaks
 from core.judgement.trend import channel_trend
 from core.record.instant import MINUTE
+from core.record.message import Message
 from tests.support.log_cases import at, context
 
 BEGIN = "00:30 rr 20\n01:00 mode BPAP-ST ipap 20 epap 5 ti 1.0"
@@ -43,6 +44,38 @@ def test_the_time_over_the_limit_names_its_span_and_counts_from_where_it_is_told
     assert whole.median_of is not None
     assert whole.median_of[0] == at("01:00")
     assert whole.slope_L_per_min_per_h == newest.slope_L_per_min_per_h
+
+
+TYPED = "\n".join(f"{hour:02d}:00 leak {45 + hour}" for hour in range(2, 7))
+
+
+def test_readings_typed_now_and_then_have_no_minutes_over_the_limit() -> None:
+    ctx = context(f"{BEGIN} leak_definition unintentional\n{TYPED}", "06:30")
+    leak = leak_figure(ctx)
+    assert (leak.readings_typed, leak.readings_typed_over) == (5, 5)
+    assert leak.minutes_over_limit is None, "ten minutes for five hourly readings would reassure"
+    assert leak.reasons["minutes_over_limit"].key == "leak.typed_now_and_then"
+    assert leak.over_since is None
+    (doubt,) = leak_doubts(leak, ctx.policy.leak)
+    assert doubt == Message("leak.flag_not_judged", {"over": 5, "of": 5, "n": 10, "m": 12})
+
+
+def test_a_typed_reading_adds_no_minutes_to_those_of_the_device() -> None:
+    log = f"{BEGIN} leak_definition unintentional\n{TYPED}\ndevice leak 06:00 06:20 45 45"
+    ctx = context(log, "06:20")
+    leak = leak_figure(ctx)
+    assert leak.minutes_over_limit == 20
+    assert leak.minutes_sampled == 20
+    assert leak.sampled_in_part, "20 min of 4 h 20 min"
+    assert (leak.readings_typed, leak.readings_typed_over) == (5, 5)
+    assert leak_doubts(leak, ctx.policy.leak) == (), "the device's samples judge the flag"
+
+
+def test_typed_readings_within_the_limit_leave_no_doubt() -> None:
+    ctx = context(f"{BEGIN} leak_definition unintentional\n02:00 leak 20\n03:00 leak 30", "03:30")
+    leak = leak_figure(ctx)
+    assert leak.readings_typed_over == 0
+    assert leak_doubts(leak, ctx.policy.leak) == ()
 
 
 def test_a_total_leaks_limit_adds_the_port_at_the_time_weighted_pressure() -> None:
