@@ -266,14 +266,14 @@ class MainWindow(Shell):
     def _ward_refreshed(self, content: WardContent) -> None:
         o = self.now_open()
         o.pages.ward.show_ward(content)
-        chosen = o.model.session.selection
-        gone = chosen is None or (chosen == o.strip.patient and chosen not in o.feed.answers)
-        if gone:  # nobody was chosen yet, or what was begun was taken back
+        chosen, live = o.model.session.selection, o.model.session.is_live
+        gone = chosen == o.strip.patient and chosen not in o.feed.answers
+        if chosen is None or (gone and live):  # nobody was chosen yet, or what was begun was taken back
             first = next(iter(o.pages.ward.shown_keys()), None)
             if chosen is not None and first is not None:
                 o.strip.say_of(first, o.strip.plain())  # that it was taken back must not go with its patient
             o.model.select(first)
-        else:
+        else:  # of a moment before it began, too: another patient never takes its place unasked
             self._selection_changed()
         if o.pages.name == "compare":
             o.pages.compare.show_ward(content, o.feed.answers)

@@ -110,12 +110,29 @@ def test_before_anything_was_recorded_of_an_episode_its_pages_are_empty(qtbot, w
     assert page.on_screen is None
     assert picture_of_page(window.pages, window.theme, "") is None
     assert table_of_page(window) is None
-    for key_of_action in ("go_start", "go_now", "next_anchor", "previous_anchor", "explain", "show_figures", "table"):
+    for key_of_action in ("go_start", "go_now", "next_anchor", "previous_anchor", "explain", "table"):
         window.actions_by_key[key_of_action].trigger()  # nothing to act on, and nothing fails
     press(qtbot, window, "Alt+Home")
     until(qtbot, lambda: page.title.text() == label)
     assert page.roll.isVisible()
     assert window.model.session.selection == key
+
+
+def test_looking_back_to_before_a_bed_began_takes_no_other_in_hand(qtbot, window):
+    began = {k: a.record.first_at for k, a in window.feed.answers.items()}
+    key = max(began, key=began.get)
+    window.open_episode(key)
+    settled(qtbot, window)
+    label = window.strip.whom.text()
+    window.doers.review.look_at(began[key] - 30 * MINUTE)
+    settled(qtbot, window)
+    assert window.feed.answers, "others had begun by then"
+    assert key not in window.feed.answers
+    assert window.model.session.selection == key
+    assert window.pages.episode.title.text() == "Nothing of this episode was recorded by then"
+    press(qtbot, window, "Alt+Home")
+    until(qtbot, lambda: window.pages.episode.title.text() == label)
+    assert (window.model.session.selection, window.strip.patient) == (key, key)
 
 
 def test_a_time_that_is_none_is_refused_in_words(qtbot, window):
