@@ -30,6 +30,7 @@ if TYPE_CHECKING:
 
 ROOT = Path(__file__).parents[2]
 HANG_S = 120
+PATIENCE_S = 3.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,6 +86,7 @@ class Walker:
         self._held: Any = None
         self._hold_steps = 0
         self.answers = Answerer(self)
+        self._then: list[tuple[Callable[[], bool], Callable[[], None]]] = []
         self._ready: Callable[[], bool] = lambda: True
         self._since = self._rest_until = time.monotonic()
         self._course = self._walked()
@@ -186,6 +188,14 @@ class Walker:
             QTimer.singleShot(wait_ms + n * apart, self.window, deed)
         self._rest_until = time.monotonic() + (wait_ms + len(deeds) * apart) / 1000
 
+    def then(self, ready: Callable[[], bool], deed: Callable[[], None]) -> None:
+        """Do something once the window is ready for it, as somebody does who waits for what stands there."""
+        self._then.append((ready, deed))
+
+    def _soon(self, ready: Callable[[], bool]) -> Callable[[], bool]:
+        end = time.monotonic() + PATIENCE_S
+        return lambda: ready() or time.monotonic() > end
+
     # the course
 
     def run(self) -> int:
@@ -240,6 +250,10 @@ class Walker:
             steps = self._steps()
             step = chance.choices([s for _, s in steps], [w for w, _ in steps])[0]
             self._do(step, chance)
+            while self._then:
+                ready, deed = self._then.pop(0)
+                yield self._soon(ready)
+                self._do(lambda _walker, _chance, deed=deed: deed() or "", chance)
             self.watch.note_dialogs()
             self._let_go()
             if chance.random() < 0.4:

@@ -28,6 +28,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.operations import entry
+from app.strip.state import State
 from app.window.action_table import DEEDS
 from tests.support.open_window import ZONE
 from tests.support.walk_hands import PLAIN, front, keys_go_to, named, parts, turn, write
@@ -103,8 +104,18 @@ def logs(walker: Walker, chance: Random) -> str:
     waits, enters = chance.choice((0, 30, 150)), chance.choice((0, 1, 1, 2, 3))
     walker.say(f"log '{text[:60]}' for {strip.patient}, waits {waits}, Enter x{enters}")
     write(strip.line, text[:200], anew=chance.random() < 0.7)
+    if chance.random() < 0.6:
+        for _ in range(enters):
+            walker.then(lambda: not is_read(walker), partial(press_enter, walker))
+        return ""
     walker.after(waits, [lambda: press_enter(walker) for _ in range(enters)], apart=chance.choice((0, 20, 200)))
     return ""
+
+
+def is_read(walker: Walker) -> bool:
+    """Whether the line is still being read, or what was asked is too fresh for an answer."""
+    strip = walker.window.strip
+    return strip is not None and (strip.state is State.AWAITED or not strip.settle.is_over)
 
 
 def press_enter(walker: Walker) -> None:
@@ -139,6 +150,10 @@ def fills(walker: Walker, chance: Random) -> str:
         write(line, chance.choice(TYPED), anew=True)
     enter, escape = (partial(press_in, walker, dialog, key) for key in (Key.Key_Return, Key.Key_Escape))
     leaving = [escape] if chance.random() < 0.25 else []
+    if chance.random() < 0.6:
+        for deed in (enter, enter, *leaving):
+            walker.then(lambda: not walker.lives(dialog) or not getattr(dialog, "_awaited", False), deed)
+        return ""
     walker.after(150, [enter] * chance.choice((1, 2, 2)) + leaving, apart=chance.choice((0, 10, 200)))
     return ""
 
