@@ -112,6 +112,7 @@ def test_before_anything_was_recorded_of_an_episode_its_pages_are_empty(qtbot, w
     assert table_of_page(window) is None
     for key_of_action in ("go_start", "go_now", "next_anchor", "previous_anchor", "explain", "table"):
         window.actions_by_key[key_of_action].trigger()  # nothing to act on, and nothing fails
+    window.show_page(name)
     press(qtbot, window, "Alt+Home")
     until(qtbot, lambda: page.title.text() == label)
     assert page.roll.isVisible()
