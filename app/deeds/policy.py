@@ -75,7 +75,12 @@ class PolicyDeeds(Writer):
             return
         self.asking = PolicyFileDialog(path, text, self.shown.found.text, self.window.plain_reader, self._put,
                                        self.window.theme, self.shown)  # fmt: skip
+        self.asking.finished.connect(self._left)
         self.asking.open()
+
+    def _left(self, _result: int) -> None:
+        """Left, perhaps before the answer came: what came of it is told in the window."""
+        self.asking = None
 
     def _put(self, text: str) -> None:
         from app.operations import policy
@@ -85,7 +90,6 @@ class PolicyDeeds(Writer):
     def _is_put(self, outcome: Outcome[Policy]) -> None:
         if self.asking is not None:
             self.asking.accept()
-            self.asking = None
         name = self.tr("{name}, version {version}").format(name=outcome.value.name, version=outcome.value.version)
         self.window.say(self.tr("In force now: {name}").format(name=name))
         if self.shown is not None:

@@ -3,10 +3,13 @@
 from dataclasses import replace
 
 import pytest
+from PySide6.QtCore import QEvent
 from PySide6.QtWidgets import QApplication, QDialog
 
 from app.dialogs.close_due import CloseDueDialog
 from app.dialogs.passphrase import ChangePassphraseDialog, RecoveryCodeDialog
+from app.policy.view import PolicyDialog
+from core.judgement.policy import shipped_text
 from storage import keys
 from storage.keys import Cost
 from storage.store import Store
@@ -88,3 +91,20 @@ def test_a_dialog_that_is_opened_again_meanwhile_stays(qtbot, on_bed_7):
     assert again.isVisible()
     assert again.reason.text() == "half typed"
     again.reject()
+
+
+def test_a_policy_is_said_to_be_in_force_though_both_its_dialogs_were_left(qtbot, window, tmp_path):
+    path = tmp_path / "policy.toml"
+    path.write_text(shipped_text().replace("severe_below_ph = { value = 7.25", "severe_below_ph = { value = 7.20"))
+    window.actions_by_key["policy"].trigger()
+    until(qtbot, lambda: bool(seen(PolicyDialog)))
+    (policy,) = seen(PolicyDialog)
+    window.doers.policy.look_at(path)
+    asking = window.doers.policy.asking
+    asking.submit()
+    assert not asking.go.isEnabled()
+    asking.reject()
+    policy.reject()
+    QApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)  # both are thrown away
+    until(qtbot, lambda: "In force now" in window.strip.plain())
+    settled(qtbot, window)
