@@ -200,6 +200,9 @@ SCORES: Final[dict[str, str]] = {
     "score.inputs_missing": "missing: {missing:list}",
     "score.input_before_change":
         "{channel:name} of {at:time} does not count: settings or mask changed at {changed_at:time}",
+    "score.oxygen_off_mask":
+        "whether oxygen is given was not logged since the mask came off at {at:time}; what was set on the device "
+        "does not count",
     "score.input_too_old": "{channel:name} of {at:time} does not count: more than {limit_min:minutes} old",
     "score.no_gas": "no gas to score",
     "score.no_vitals": "no vital signs logged",

@@ -8,7 +8,6 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
-from math import isnan
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,7 +15,8 @@ from numpy.typing import NDArray
 from core.judgement.context import Context
 from core.judgement.derived import FigureInput
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
-from core.judgement.scores import Score, breathes_oxygen, hacor, news2
+from core.judgement.oxygen_breathed import oxygen_breathed
+from core.judgement.scores import Score, hacor, news2
 from core.judgement.shapes import GasFigure, ScoreFigure, ScoreInput
 from core.record.channels import CHANNELS
 from core.record.episode import Episode, Series
@@ -212,9 +212,8 @@ def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
     found = {c: _nearest_or_why(ctx.episode, c, at, fresh.of(c), walls) for c in ("spo2", "sbp", "hr", "temp")}
     found["rr"] = rate_at(ctx, at, walls)
     found["acvpu"] = nearest_word(ctx.episode, "acvpu", at, fresh.of("acvpu"), walls)
-    now = ctx.settings.at(at)
-    oxygen = breathes_oxygen(None if isnan(now.fio2) else now.fio2, None if isnan(now.o2_flow) else now.o2_flow)
-    found["on_oxygen"] = Found("yes" if oxygen else "no", at) if oxygen is not None else NOTHING
+    found["on_oxygen"] = _oxygen(ctx, at)
+    oxygen = None if found["on_oxygen"].value is None else found["on_oxygen"].value == "yes"
     scale = 2 if ctx.episode.latest_text("spo2_scale") == "2" else 1
     score = news2(
         rr=found["rr"].number, spo2=found["spo2"].number, on_oxygen=oxygen, sbp=found["sbp"].number,
@@ -224,6 +223,15 @@ def news2_at(ctx: Context, at: Instant, walls: Walls) -> ScoreFigure:
     )  # fmt: skip
     figure = score_figure(score, at, found, {})
     return figure if score.population_reason is not None else replace(figure, caveat=_scale_caveat(ctx, scale))
+
+
+def _oxygen(ctx: Context, at: Instant) -> Found:
+    """On oxygen or not, with when that was logged; off the mask what was set on the device does not count."""
+    breathed = oxygen_breathed(ctx.settings, ctx.support, at)
+    if breathed.given is not None:
+        return Found("yes" if breathed.given else "no", breathed.at)
+    off = breathed.off_since
+    return NOTHING if off is None else Found(reason=Message("score.oxygen_off_mask", {"at": off}))
 
 
 def _scale_caveat(ctx: Context, scale: int) -> Message:

@@ -103,7 +103,15 @@ def spo2_points(spo2: float, scale: str, on_oxygen: bool) -> float:
 
 
 def on_oxygen(log: Log, at: int) -> bool | None:
-    """A flow without an FiO2 counts as oxygen; None where nothing of the oxygen was ever logged."""
+    """A flow without an FiO2 counts as oxygen; None where nothing of the oxygen was ever logged.
+
+    Off the mask, what was set on the machine is not what is breathed: only what was logged since counts.
+    """
+    off = [a for a, b in log.breaks if a < at and (b is None or at <= b)]
+    off += [log.end] if log.end is not None and log.end < at else []
+    logged = [m for c in ("fio2", "o2_flow") for m, _ in log.all(c) if m <= at]
+    if off and not any(m >= off[-1] for m in logged):
+        return None
     fio2, flow = log.fio2(at), log.flow(at)
     if fio2 is not None:
         return fio2 > 0.21

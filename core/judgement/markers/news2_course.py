@@ -14,6 +14,7 @@ import numpy as np
 
 from core.judgement.markers.observed import Observed
 from core.judgement.markers.spells import Point, Spell, from_points
+from core.judgement.oxygen_breathed import oxygen_course
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.score_inputs import Walls, barriers
 from core.judgement.scores_binning import half_up_array
@@ -42,7 +43,7 @@ def news2_course(seen: Observed) -> Course:
     moments, counts = np.unique(np.concatenate([s.t for s in spots.values()]), return_counts=True)
     t = moments[counts >= 3]
     low, high = np.zeros(t.shape), np.zeros(t.shape)
-    oxygen = _oxygen(seen, t)
+    oxygen = oxygen_course(seen.settings, seen.support, t)
     known: list[Flags] = []
     for name in ("rr", "hr", "sbp", "temp"):
         decimals, bins = BINS[name]
@@ -96,13 +97,6 @@ def _points(bins: Bins, values: Values, decimals: int) -> Values:
     points = np.array([p for _, p in bins], np.float64)
     rounded = half_up_array(values, decimals)
     return np.where(np.isnan(values), np.nan, points[np.searchsorted(edges, np.nan_to_num(rounded), side="left")])
-
-
-def _oxygen(seen: Observed, t: Times) -> Values:
-    """1 on oxygen, 0 on air, NaN where neither FiO2 nor a flow is known."""
-    fio2, flow = seen.settings.fio2.on(t), seen.settings.o2_flow.on(t)
-    by_fraction = np.where(np.isnan(fio2), np.where(flow == 0, 0.0, np.nan), (fio2 > 0.21 + 1e-9).astype(np.float64))
-    return np.where(flow > 0, 1.0, by_fraction)
 
 
 def _consciousness(seen: Observed, t: Times) -> Values:

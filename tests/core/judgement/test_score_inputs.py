@@ -8,6 +8,7 @@ import pytest
 from core.figures.episode_figures import gas_stage, record_stage
 from core.judgement.policy import read_policy, shipped_policy, shipped_text
 from core.judgement.score_inputs import barriers, hacor_at, nearest, nearest_word, news2_latest, rate_at
+from core.record.message import Message
 from tests.support.log import device, episode, moment
 
 NO_WALLS = np.empty(0, np.int64)
@@ -129,6 +130,31 @@ def test_news2_counts_an_oxygen_flow_as_oxygen():
         "01:00 mode bpap-st ipap 14 epap 5 o2 flow 3\n02:00 rr 18 spo2 97 bp 130/80 hr 80 acvpu alert temp 37"
     )
     assert news2_latest(ctx, NO_WALLS).inputs["on_oxygen"].points == 2
+
+
+VITALS = "rr 20 spo2 90 hr 90 sbp 120 temp 37 acvpu alert"
+
+
+def test_off_the_mask_oxygen_nobody_logged_makes_news2_a_range():
+    ctx = context(f"01:00 mode bpap-st ipap 20 epap 5 fio2 28\n02:10 mask off\n02:15 {VITALS}")
+    score = news2_latest(ctx, NO_WALLS)
+    assert (score.points, score.lowest, score.highest, score.missing) == (None, 3, 5, ("on_oxygen",))
+    oxygen = score.inputs["on_oxygen"]
+    assert (oxygen.value, oxygen.reason) == (None, Message("score.oxygen_off_mask", {"at": moment("02:10")}))
+
+
+@pytest.mark.parametrize(("oxygen", "points"), [("flow 2", 5), ("flow 0", 3), ("fio2 28", 5)])
+def test_oxygen_logged_since_the_mask_came_off_counts(oxygen, points):
+    ctx = context(f"01:00 mode bpap-st ipap 20 epap 5 fio2 28\n02:10 mask off\n02:12 {oxygen}\n02:15 {VITALS}")
+    score = news2_latest(ctx, NO_WALLS)
+    assert score.points == points
+    assert score.inputs["on_oxygen"].at == moment("02:12"), "when it was logged, not when the vitals were"
+
+
+def test_the_mask_on_again_breathes_what_the_device_gives_and_a_stop_does_not():
+    log = "01:00 mode bpap-st ipap 20 epap 5 fio2 28\n02:10 mask off\n02:30 mask on\n"
+    assert news2_latest(context(f"{log}02:31 {VITALS}"), NO_WALLS).points == 5
+    assert news2_latest(context(f"{log}03:00 stopped\n03:05 {VITALS}"), NO_WALLS).points is None
 
 
 def test_walls_are_anchors_and_the_edges_of_breaks():

@@ -135,3 +135,11 @@ def test_the_course_of_news2_reaches_across_no_change_as_the_score_does_not():
         score = seen.ctx.scores["news2"]
         assert int((~course.known[-1]).sum()) == len(score.missing) == missing  # sbp, temp and acvpu
         assert (course.low[-1], course.high[-1]) == (score.lowest, score.highest)
+
+
+def test_the_course_of_news2_knows_no_oxygen_off_the_mask_as_the_score_does_not():
+    log = COPD + START + "02:00 mask_off\n{}02:30 rr 20 spo2 90 hr 90 sbp 120 temp 37 acvpu alert\n"
+    for given, span in (("", (3, 5)), ("02:10 o2_flow 2\n", (5, 5)), ("02:10 mask_on\n", (5, 5))):
+        seen = Observed(ctx(log.format(given), "02:40"))
+        course, score = news2_course(seen), seen.ctx.scores["news2"]
+        assert (course.low[-1], course.high[-1]) == (score.lowest, score.highest) == span
