@@ -30,6 +30,18 @@ _NO_BOUND: Final = 2**62
 """Later than any moment: the record itself holds nothing later than `as_of`."""
 
 
+def one_a_minute(series: Series) -> Flags:
+    """Which values are a reading of their own, shape (n,): of several that people logged for one minute the last is.
+
+    A value typed twice is no second reading, and what asks for two in a row must not take it for one.
+    """
+    kept = np.ones(series.t.shape, np.bool_)
+    spots = np.flatnonzero(series.spot)
+    minutes = series.t[spots] // MINUTE
+    kept[spots[:-1][minutes[1:] == minutes[:-1]]] = False
+    return kept
+
+
 @dataclass(frozen=True, slots=True)
 class Attributed:
     """A gas as it judges one anchor."""
@@ -238,7 +250,7 @@ class Observed:
         return self.vitals.rate(at, 0, _NO_BOUND)
 
     def series(self, channel: str) -> Series:
-        """The known values of a channel."""
+        """The known values of a channel; of those that people logged for one minute the last."""
         return self._part(channel, "all")
 
     def spots(self, channel: str) -> Series:
@@ -263,8 +275,8 @@ class Observed:
     def _cut(self, channel: str, part: str) -> Series:
         if part == "all":
             found = self.episode.number(channel)
-            known = np.isfinite(found.v)
-            return found if known.all() else found.cut(known)
+            kept = np.isfinite(found.v) & one_a_minute(found)
+            return found if kept.all() else found.cut(kept)
         if part == "worn":
             machine = self.machine(channel)
             return machine.cut(self.worn(machine.t)) if len(machine) else machine
