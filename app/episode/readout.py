@@ -9,11 +9,12 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QFrame, QLabel, QSizePolicy, QVBoxLayout
 
 from app.chart.shapes import Look, Reading
-from app.look.formats import fixed, minutes, wall
+from app.look.formats import fixed, lately, minutes, wall
 from app.look.theme import Theme
 from app.telling.phrases import settings_line
 from app.telling.support_course import Stretch
 from core.record.instant import MINUTE, Instant
+from core.record.support import SupportTime
 
 FRESH = 2 * MINUTE
 """A value younger than this is told without its age."""
@@ -71,25 +72,46 @@ class Readout(QFrame):
 
     def show_moment(
         self, at: Instant, zone: str, stretch: Stretch | None, readings: Iterable[Reading], *, pointed: bool,
-        events: Iterable[str] = (), then: bool = False,
+        support: SupportTime | None = None, events: Iterable[str] = (), then: bool = False,
     ) -> None:  # fmt: skip
         """Say what stood at a moment; `pointed`: the crosshair is there, else it is now, or with `then` the moment
-        that is looked back to. `events`, which the chart writes at the crosshair, are for screen readers."""
+        that is looked back to. `support` says whether the settings acted then. `events`, which the chart writes at
+        the crosshair, are for screen readers."""
         newest = self.tr("Then, {time}") if then else self.tr("Now, {time}")
         head = wall(at, zone) if pointed else newest.format(time=wall(at, zone))
-        settings = settings_line(stretch.settings) if stretch is not None else self.tr("no settings recorded")
-        age = ""
-        if stretch is not None:
-            age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))
-        quiet = self._theme.colours.ink_quiet
-        self._settings.setText(
-            f"<b>{escape(head)}</b> &nbsp; {escape(settings)} <span style='color:{quiet}'>{escape(age)}</span>"
-        )
+        told = self._not_acting(at, zone, stretch, support) or self._in_force(at, stretch)
+        self._settings.setText(f"<b>{escape(head)}</b> &nbsp; {told}")
         parts = [self._value(r, at) for r in _once(readings)]
-        lead = f"<span style='color:{quiet}'>{escape(self.tr('Readings:'))}</span>"
-        told = f"{lead}&nbsp; " + " &nbsp;&nbsp; ".join(parts)
-        self._values.setText(told if parts else escape(self.tr("Nothing logged yet at this moment")))
+        values = f"{self._quiet(self.tr('Readings:'))}&nbsp; " + " &nbsp;&nbsp; ".join(parts)
+        self._values.setText(values if parts else escape(self.tr("Nothing logged yet at this moment")))
         self._values.setAccessibleName("\n".join((self.plain(), *events)))
+
+    def _in_force(self, at: Instant, stretch: Stretch | None) -> str:
+        if stretch is None:
+            return escape(self.tr("no settings recorded"))
+        age = self.tr("for {length}").format(length=minutes((at - stretch.start) / MINUTE))
+        return f"{escape(settings_line(stretch.settings))} {self._quiet(age)}"
+
+    def _not_acting(self, at: Instant, zone: str, stretch: Stretch | None, support: SupportTime | None) -> str:
+        """That no setting acts, first and strongly, then what was set, as such; "" where support runs."""
+        if support is None:
+            return ""
+        if support.end is not None and at >= support.end:
+            return f"<b>{escape(self.tr('support ended {time}').format(time=lately(support.end, at, zone)))}</b>"
+        off = support.break_at(at)
+        if off is None:
+            return ""
+        told = self.tr("mask off since {time} ({length})").format(
+            time=lately(off.start, at, zone), length=minutes(off.minutes(at))
+        )
+        if stretch is None or stretch.settings.is_off:
+            return f"<b>{escape(told)}</b>"
+        # what is typed while the mask is off was not in force when it came off
+        before = self.tr("set before: {settings}") if stretch.start <= off.start else self.tr("set since: {settings}")
+        return f"<b>{escape(told)}</b> &nbsp; {self._quiet(before.format(settings=settings_line(stretch.settings)))}"
+
+    def _quiet(self, text: str) -> str:
+        return f"<span style='color:{self._theme.colours.ink_quiet}'>{escape(text)}</span>"
 
     def plain(self) -> str:
         """Both lines in plain words."""

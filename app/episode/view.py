@@ -240,6 +240,7 @@ class EpisodeView(QWidget):
             self._on.course.at(at),
             self.stack.readings_at(at),
             pointed=instant is not None,
+            support=self._on.course.support,
             events=[t.word for t in self.stack.events_at(at)] if instant is not None else (),
             then=not self._on.live,
         )
