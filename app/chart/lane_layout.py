@@ -109,7 +109,9 @@ def geometry_of(spec: LanesSpec, theme: Theme, width: float, height: float) -> L
     words = QFontMetricsF(theme.font(theme.type.caption, bold=True))
     states = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.state_word, lane.verdict_word)]
     dues = [words.horizontalAdvance(w) for lane in spec.lanes for w in (lane.due_word, lane.flag_word)]
-    state = min(max([*states, px(60)]) + px(44), width * 0.215)
+    shortest = [(lane.state_word, *lane.state_shorter)[-1] for lane in spec.lanes]
+    least = max(map(words.horizontalAdvance, shortest), default=0.0)  # they have room whatever the clock loses
+    state = max(min(max([*states, px(60)]) + px(44), width * 0.215), min(least + px(44), width * 0.28))
     due = min(max([*dues, px(60)]) + px(60), width * 0.25)
     spare = width - left - state - due - px(_LEAST_CLOCK)
     if spare < 0:  # what stands under a name is cut before the columns are folded: folded lanes are twice as high

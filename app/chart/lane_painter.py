@@ -4,7 +4,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPen
 
 from app.chart.lane_layout import LaneGeometry, Placed
-from app.chart.marks import draw_card, fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
+from app.chart.marks import cut_between, draw_card, fitted, gas_mark, pennant, solid_pen, verdict_sign, whole_or_none
 from app.chart.shapes import Lane, LaneItem, LaneKind, LanesSpec
 from app.chart.time_ticks import ClockMark, date_word
 from app.look.theme import GasState, Theme
@@ -138,10 +138,10 @@ class LanePainter:
             y += line
         painter.setFont(theme.font(theme.type.body, bold=True))
         painter.setPen(self._ink(lane))
-        painter.drawText(QRectF(pad, y, room, line), _LEFT, fitted(painter, lane.title, room))
+        painter.drawText(QRectF(pad, y, room, line), _LEFT, cut_between(painter, lane.title, room))
         painter.setFont(theme.font(theme.type.caption))
         painter.setPen(QColor(theme.colours.ink_quiet))
-        painter.drawText(QRectF(pad, y + line, room, line), _LEFT, fitted(painter, lane.subtitle, room))
+        painter.drawText(QRectF(pad, y + line, room, line), _LEFT, cut_between(painter, lane.subtitle, room))
 
     def _draw_clock(self, painter: QPainter, lane: Lane, placed: list[Placed]) -> None:
         g, c = self.g, self.theme.colours
@@ -334,10 +334,14 @@ class LanePainter:
         self._draw_due(painter, lane, x, y + line, room, line)
 
     def _state_word(self, lane: Lane, room: float) -> str:
-        """The state's words, or the shorter ones: a value cut in the middle would be another value."""
-        font = self.theme.font(self.theme.type.caption, bold=True)
-        fits = QFontMetricsF(font).horizontalAdvance(lane.state_word) <= room
-        return lane.state_word if fits or not lane.state_short else lane.state_short
+        """The state's words, or shorter ones: a value cut in the middle would be another value."""
+        forms = (lane.state_word, *lane.state_shorter)
+        for font in (self.theme.font(self.theme.type.caption, bold=True), self._least_font(bold=True)):
+            metrics = QFontMetricsF(font)
+            for form in forms:
+                if metrics.horizontalAdvance(form) <= room:
+                    return form
+        return forms[-1]
 
     def _draw_due(self, painter: QPainter, lane: Lane, x: float, y: float, room: float, line: float) -> None:
         if not lane.due_word:
@@ -359,7 +363,14 @@ class LanePainter:
     def _right_words(self, painter: QPainter, word: str, room: QRectF, ink: QColor, *, bold: bool = False) -> None:
         painter.setFont(self._font_for(word, room.width(), bold=bold))
         painter.setPen(ink)
-        painter.drawText(room, _LEFT, fitted(painter, word, room.width()))
+        painter.drawText(room, _LEFT, cut_between(painter, word, room.width()))
+
+    def _least_font(self, *, bold: bool) -> QFont:
+        """The smallest font of words at the right."""
+        size = self.theme.type.caption
+        while self.theme.px(size - 1) >= self.theme.type.emphasis:
+            size -= 1
+        return self.theme.font(size, bold=bold)
 
     def _font_for(self, word: str, width: float, *, bold: bool) -> QFont:
         """The caption's font; where text is large, one so much smaller that the words fit, but never as small as text

@@ -5,6 +5,7 @@ known a cross. Verdict is how that outline is filled (`gas_mark`) and a sign of 
 (`verdict_sign`). Tier is a pennant: hollow, filled, filled with two tails.
 """
 
+import re
 from math import cos, pi, sin
 
 from PySide6.QtCore import QPointF, QRectF, Qt
@@ -14,6 +15,7 @@ from app.chart.shapes import Look
 from app.look.theme import RADIUS, GasState, Theme, Tier, Verdict
 
 ELLIPSIS = "\N{HORIZONTAL ELLIPSIS}"
+_PART_ENDS = re.compile(r"[;,](?=\s)")
 
 
 def solid_pen(colour: QColor | str, width: float = 1.0) -> QPen:
@@ -248,6 +250,19 @@ def fitted(painter: QPainter, text: str, width: float) -> str:
         return ""
     cut = metrics.elidedText(text, Qt.TextElideMode.ElideRight, int(width))
     return _whole_numbers(text, cut)
+
+
+def cut_between(painter: QPainter, text: str, width: float) -> str:
+    """The text if it fits, else as many of its parts as do (they end at a comma or a semicolon), else its beginning:
+    never nothing, and no part cut in the middle where a part has room."""
+    metrics = painter.fontMetrics()
+    if metrics.horizontalAdvance(text) <= width:
+        return text
+    ends = [m.start() for m in _PART_ENDS.finditer(text)]
+    for end in reversed(ends):
+        if metrics.horizontalAdvance(part := f"{text[:end]} {ELLIPSIS}") <= width:
+            return part
+    return _whole_numbers(text, metrics.elidedText(text, Qt.TextElideMode.ElideRight, int(width)))
 
 
 def _whole_numbers(text: str, cut: str) -> str:

@@ -275,7 +275,7 @@ class Lane:
 
     tier, flag_word   the strongest open flag
     state_word, verdict_word  the state now and the headline at the right
-    state_short       the state where `state_word` has no room; "" where there is none shorter
+    state_shorter     the state where `state_word` has no room, the longest first
     doubtful          the gas of that state holds a doubtful value
     due_word, due_late  the next due item
     first_word        written where this lane is the one to see first
@@ -288,7 +288,7 @@ class Lane:
     items: tuple[LaneItem, ...] = ()
     state: GasState | None = None
     state_word: str = ""
-    state_short: str = ""
+    state_shorter: tuple[str, ...] = ()
     doubtful: bool = False
     verdict: Verdict | None = None
     verdict_word: str = ""

@@ -40,7 +40,7 @@ from app.telling.support_course import Course
 from app.ward.flag_column import short_flags
 from app.ward.moves import Move, move_sentence, moved_word
 from app.ward.ordering import is_ended, next_due
-from app.ward.state_words import state_short, state_word
+from app.ward.state_words import state_shorter, state_word
 from app.words import Reader, sentence
 from core.judgement.response_shapes import JudgedGas, ResponseFigure
 from core.judgement.shapes import DueFigure, EpisodeFigures, FlagFigure, GasFigure
@@ -95,7 +95,7 @@ class LaneWords:
             items=tuple(sorted((*self._items(f, course), *self._moves(on_ward.moves)), key=lambda i: i.at)),
             state=state_of(gas.state) if gas is not None else None,
             state_word=state_word(f, gas, self.reader),
-            state_short=state_short(f, gas, self.reader),
+            state_shorter=state_shorter(f, gas, self.reader),
             doubtful=gas is not None and (gas.doubt or gas.disputed),
             verdict=told.sign if told is not None else None,
             verdict_word=told.short if told is not None else "",

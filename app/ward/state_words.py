@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from app.look.formats import gas_pressure
 from app.telling.gas_doubt import state_in_doubt
 from app.telling.headline import gas_state_word, off_mask_word, pf_word, state_now
 from app.telling.phrases import translate
@@ -26,10 +27,26 @@ def state_word(f: EpisodeFigures, gas: GasFigure | None, reader: Reader) -> str:
     return told
 
 
-def state_short(f: EpisodeFigures, gas: GasFigure | None, reader: Reader) -> str:
-    """Oxygen and pH by their values, the state left to its shape; "" where there is nothing shorter to say."""
-    pf = "" if gas is None else pf_word(f, gas, reader.gas_unit, reader.zone)
-    ph = "" if gas is None else ph_as_reported(gas)
-    if gas is None or not pf or not ph or off_mask_word(f, reader.zone) or gas.off_support:
-        return ""
-    return state_in_doubt(gas, f"{pf}, pH {ph}")
+def state_shorter(f: EpisodeFigures, gas: GasFigure | None, reader: Reader) -> tuple[str, ...]:
+    """Shorter forms of the state, the longest first: each says the mask, the oxygen that fails and a gas off support,
+    and leaves the name of the state to its shape rather than any of them. () where there is nothing shorter."""
+    if off_mask_word(f, reader.zone):
+        off = translate("ward", "mask off")
+        if gas is None or gas.state not in _ACID:
+            return (off,)
+        return (f"{off}; {state_in_doubt(gas, gas_state_word(f, gas))}",)
+    if gas is None:
+        return (translate("ward", "no gas yet"),)
+    ph = ph_as_reported(gas)
+    of_ph = translate("ward", "pH {ph}").format(ph=ph) if ph else translate("ward", "pH not known")
+    pf = pf_word(f, gas, reader.gas_unit, reader.zone)
+    if gas.off_support:
+        off = translate("ward", "off support: {state}")
+        lone = gas_pressure(f.now.pf_mmHg, reader.gas_unit) if pf and f.now.pf_mmHg is not None else ""
+        oxygen = dict.fromkeys((f"{pf}; ", f"P/F {lone}; ")) if pf else {"": None}
+        forms = [f"{o}{off.format(state=t)}" for o in oxygen for t in (gas_state_word(f, gas), of_ph)]
+    elif pf and ph:
+        forms = [f"{pf}, {of_ph}"]
+    else:
+        forms = [of_ph] if ph and gas.state not in _ACID else []
+    return tuple(state_in_doubt(gas, form) for form in forms)

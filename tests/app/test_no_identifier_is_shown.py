@@ -67,7 +67,7 @@ def texts(episode: Episode, f: EpisodeFigures) -> Iterator[str]:
     yield episode_text(f, reader)
     yield summary(f, reader)
     lane = LaneWords(reader, f.as_of).lane(OnWard(f, course_of(episode, f.as_of)), first=True, apart="from 22:45")
-    yield from (lane.title, lane.subtitle, lane.state_word, lane.state_short, lane.verdict_word, lane.flag_word)
+    yield from (lane.title, lane.subtitle, lane.state_word, *lane.state_shorter, lane.verdict_word, lane.flag_word)
     yield from (lane.due_word, lane.sentence, *(i.sentence for i in lane.items), *(i.word for i in lane.items))
     yield from (told.as_text() for told in explained(f, reader))
 

@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor, QFontMetricsF, QImage, QPainter
 from app.chart.lane_layout import geometry_of, place_items
 from app.chart.lane_painter import LanePainter
 from app.chart.lanes import WardLanes
-from app.chart.marks import fitted
+from app.chart.marks import cut_between, fitted
 from app.chart.shapes import LaneItem, LaneKind
 from app.look.theme import DARK, LIGHT
 from tests.app.chart.conftest import at
@@ -274,3 +274,46 @@ def test_with_large_text_words_shrink_before_they_are_cut(qtbot, lanes_spec):
     assert QFontMetricsF(smaller).horizontalAdvance("Repeat blood gas overdue 11 h 35 min") <= 440
     plain = LanePainter(lanes_spec, LIGHT, geometry_of(lanes_spec, LIGHT, 1236, 500), [])
     assert plain._font_for("x" * 200, 100, bold=True).pixelSize() == LIGHT.type.caption
+
+
+UNKNOWN_STATE = (
+    "P/F 218 mmHg at 23:20; state not known, last gas off support",
+    "P/F 218 mmHg at 23:20; off support: state not known",
+    "P/F 218 mmHg; off support: pH not known",
+)
+
+
+@pytest.mark.parametrize("scale", [1.0, 1.25, 1.5])
+@pytest.mark.parametrize("width", [1248, 1334, 1888])
+def test_a_state_is_never_blank_and_never_cut(qtbot, lanes_spec, width, scale):
+    theme = LIGHT.scaled(scale)
+    lane = replace(lanes_spec.lanes[0], state_word=UNKNOWN_STATE[0], state_shorter=UNKNOWN_STATE[1:],
+                   due_word="Reassessment overdue 1 h 01 min", flag_word="Gas overdue*; Acidosis off support* +1")  # fmt: skip
+    spec = replace(lanes_spec, lanes=(lane,))
+    g = geometry_of(spec, theme, width, 550)
+    drawn: list[str] = []
+    painting = LanePainter(spec, theme, g, [])
+    painting._right_words = lambda painter, word, room, ink, **how: drawn.append(
+        (
+            painter.setFont(painting._font_for(word, room.width(), bold=True)),
+            cut_between(painter, word, room.width()),
+        )[1]
+    )
+    image = QImage(width, round(g.lane), QImage.Format.Format_RGB32)
+    painter = QPainter(image)
+    painting._draw_right(painter, lane)
+    painter.end()
+    assert drawn[0] in UNKNOWN_STATE
+
+
+def test_what_has_no_room_is_cut_between_its_parts_and_never_left_out(qtbot):
+    image = QImage(10, 10, QImage.Format.Format_RGB32)
+    painter = QPainter(image)
+    painter.setFont(LIGHT.font(LIGHT.type.caption, bold=True))
+    whole = "P/F 218 mmHg at 23:20; state not known, last gas off support"
+    told = {cut_between(painter, whole, width) for width in range(30, 500)}
+    painter.end()
+    assert {whole, "P/F 218 mmHg at 23:20; state not known \N{HORIZONTAL ELLIPSIS}",
+            "P/F 218 mmHg at 23:20 \N{HORIZONTAL ELLIPSIS}"} <= told  # fmt: skip
+    assert "" not in told
+    assert not any(t.startswith("P/F 21\N{HORIZONTAL ELLIPSIS}") for t in told)

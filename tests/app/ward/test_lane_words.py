@@ -205,7 +205,32 @@ def test_a_state_too_long_for_its_place_keeps_oxygen_and_ph_whole():
     lane = lane_of(replace(bed, figures=replace(bed.figures, now=now)))
     gas = bed.figures.gases[-1]
     assert lane.state_word == f"P/F 236 mmHg; severe, pH {gas.ph_text}"
-    assert lane.state_short == f"P/F 236 mmHg, pH {gas.ph_text}"
+    assert lane.state_shorter == (f"P/F 236 mmHg, pH {gas.ph_text}",)
+
+
+def test_a_shorter_state_loses_neither_that_its_gas_was_off_support_nor_the_oxygen_that_fails():
+    bed = failing()
+    gas = replace(bed.figures.gases[-1], off_support=True)
+    now = replace(bed.figures.now, oxygen_failure=True, pf_mmHg=218.0, pf_at=at("00:40"))
+
+    def told(last):
+        lane = lane_of(replace(bed, figures=replace(bed.figures, now=now, gases=(last,))))
+        return lane.state_word, lane.state_shorter
+
+    whole, shorter = told(gas)
+    assert whole == "P/F 218 mmHg at 00:40; severe, last gas off support"
+    assert shorter[0] == "P/F 218 mmHg at 00:40; off support: severe"
+    assert shorter[-1] == f"P/F 218 mmHg; off support: pH {gas.ph_text}"
+    whole, shorter = told(replace(gas, ph=None, ph_text=None, state="unknown"))
+    assert whole == "P/F 218 mmHg at 00:40; state not known, last gas off support"
+    assert shorter[-1] == "P/F 218 mmHg; off support: pH not known"
+    assert all("off support" in form and "P/F 218 mmHg" in form for form in shorter)
+
+
+def test_a_mask_that_is_off_stays_in_the_shortest_form():
+    off = replace(failing().figures, now=NowFigure(off_mask_since=at("05:21")))
+    lane = WORDS.lane(OnWard(off, course_of(failing().record, NOW)), first=False)
+    assert lane.state_shorter == ("mask off; severe",)
 
 
 def test_a_silence_stands_first_under_the_name():
