@@ -6,6 +6,8 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 
 from app.look import formats
+from app.telling.drawn import drawn_word, fio2_source
+from app.telling.gas_doubt import rivals_word
 from app.telling.presumed import presumed_word
 from app.telling.taken import taken_words
 from app.words import Reader, sentence
@@ -142,7 +144,8 @@ class FigureLines:
         if g.lactate_mmol_L is not None:
             parts.append(f"lactate {formats.fixed(g.lactate_mmol_L, 1)} mmol/L")
         if g.fio2 is not None:
-            parts.append(f"FiO2 {formats.fraction(g.fio2)}")
+            source = fio2_source(g)
+            parts.append(f"FiO2 {formats.fraction(g.fio2)}" + (f" ({source})" if source else ""))
         no_pf = self.why("P/F", g.reasons, "pf_mmHg")
         parts.append(no_pf if g.pf_mmHg is None else f"P/F {self.pressure(g.pf_mmHg)}")
         if g.aa_gradient_mmHg is not None:
@@ -152,11 +155,12 @@ class FigureLines:
 
     def gas_marks(self, g: GasFigure) -> list[str]:
         """State and doubts of a gas, as words."""
-        marks = ((g.off_support, "drawn off support"),
-                 (g.consistent is False, "pH, PCO2 and bicarbonate do not agree"), (g.doubt, "doubtful"),
+        marks = ((g.consistent is False, "pH, PCO2 and bicarbonate do not agree"), (g.doubt, "doubtful"),
                  (g.corrected, "corrected"), (g.disputed, "disputed"))  # fmt: skip
         state = [self.state(g.state, g.at)] if g.state else []
-        return state + [self.tr(word) for holds, word in marks if holds]
+        rivals, drawn = rivals_word(g), drawn_word(g)
+        state += [drawn] if drawn else []
+        return [*state, *(self.tr(word) for holds, word in marks if holds), *([rivals] if rivals else [])]
 
     def why(self, name: str, reasons: Reasons, field: str) -> str:
         """An absent figure with its reason; empty where there is none."""

@@ -10,7 +10,7 @@ _DOUBT = (
     "unconfirmed=holds a value nobody confirmed;unusual=holds an unusual value;"
     "implausible=holds values that hardly belong together;"
     "inconsistent=has a pH, PCO2 and bicarbonate that do not agree;"
-    "corrected=was corrected;disputed=is disputed: corrected twice;"
+    "corrected=was corrected;disputed=is disputed: two values or corrections of it differ;"
     "site assumed=has no site recorded, taken as arterial"
 )
 _POPULATION = "validated in: {population}"
@@ -39,7 +39,10 @@ EVIDENCE: Final[dict[str, str]] = {
         "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;off support=it was drawn off support;"
         "outside=its score is made for other patients than this gas shows;"
         "no answer=it neither meets nor ends it}[[{missing:list} missing]].",
-    "evidence.off_support": "This gas was drawn off support.",
+    "evidence.not_steady":
+        "This gas was drawn {minutes:minutes} after the mask went on again at {back_on_at:time}, so not yet steady.",
+    "evidence.off_support": "This gas was drawn while the mask was off.",
+    "evidence.support_ended": "This gas was drawn after support ended.",
     "evidence.on_oxygen": "On FiO2 {fio2:fraction}.",
     "evidence.outside_population": "Outside its population (" + _POPULATION + ").",
     "evidence.overdue": "{what:due} was due by {until:time}.",
@@ -136,7 +139,9 @@ _RATE = ("[[ (median from {since:time} to {at:clock})]]"
 
 LEVERS: Final[dict[str, str]] = {
     "lever.acidosis": "pH {ph:2} with PaCO2 {paco2_mmHg:gas} at {at:time}.",
-    "lever.acidosis_off_support": "Acidosis off support: pH {ph:2} with PaCO2 {paco2_mmHg:gas} at {at:time}.",
+    "lever.acidosis_off_support":
+        "Acidosis off support[[, {minutes:minutes} after the mask went on again]]: pH {ph:2} with PaCO2 "
+        "{paco2_mmHg:gas} at {at:time}.",
     "lever.flag_open": "Open flag: {marker:marker}, since {since:time}.",
     "lever.flags_more": "{count:0} more about it {count:pick 1=is;else=are} open.",
     "lever.event": "{channel:name}[[: {text}]] at {at:time}.",

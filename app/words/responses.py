@@ -27,14 +27,20 @@ TEMPLATES: Final[dict[str, str]] = {
         "no rate of the patient's own is known.",
     "effect.support_kept": _PRESSURES + "pressure support stays {after:trim} cmH2O.",
     "effect.ti": "Inspiratory time {before:trim} to {after:trim} s.",
-    "response.acidosis_off_support": "Acidosis off support: pH {ph:2} at {gas_at:time}.",
+    "response.acidosis_off_support": "It shows acidosis all the same: pH {ph:2} at {gas_at:time}.",
     "response.also_changed": "{steps:pick 1=One other change;else=Other changes} in between, "
         "the last at {last_at:time}.",
     "response.before_baseline": "The gas of {gas_at:time} was drawn before the baseline.",
     "response.baseline_early": "The baseline, of {gas_at:time}, is an early gas: not steady.",
     "response.capillary": "Capillary gas: stands for arterial in pH and PCO2, not in PO2.",
     "response.early": "Early gas, before the response window: not steady.",
-    "response.off_support": "The gas of {gas_at:time} was drawn off support: it is not used for a verdict.",
+    "response.after_support":
+        "The gas of {gas_at:time} was drawn after support ended: it is not used for a verdict.",
+    "response.not_steady":
+        "The gas of {gas_at:time} was drawn {minutes:minutes} after the mask went on again at {back_on_at:time}, so not "
+        "yet steady: it is not used for a verdict.",
+    "response.off_support":
+        "The gas of {gas_at:time} was drawn while the mask was off: it is not used for a verdict.",
     "response.venous_only": "The gas of {gas_at:time} is venous: it gives no verdict on arterial gases.",
     "response.by_spo2_alone": "Judged by SpO2 alone, without a gas.",
     "response.co2_not_active":
@@ -45,7 +51,8 @@ TEMPLATES: Final[dict[str, str]] = {
         "{direction:pick up=up beyond;down=down beyond;inside noise=within} measurement error ({noise:qn}).",
     "response.confirm_arterially": "Venous pH {ph:2} at {gas_at:time}: confirm arterially.",
     "response.corrected": "{side:pick " + _WHO + "} of {gas_at:time} was corrected.",
-    "response.disputed": "{side:pick " + _WHO + "} of {gas_at:time} is disputed: corrected twice.",
+    "response.disputed":
+        "{side:pick " + _WHO + "} of {gas_at:time} is disputed: two values or corrections of it differ.",
     "response.fio2_differs": "P/F not compared: FiO2 {before:fraction} then {after:fraction}.",
     "response.fio2_not_known": "P/F not compared: FiO2 of {side:pick " + _SIDE + "} not known.",
     "response.gain_lost": "Gain lost: {quantity:name} was {best:q} at {best_at:time}, now {now:q}.",

@@ -76,9 +76,11 @@ def gas_figure(
         aa_gradient_mmHg=aa, consistent=consistent, state=state,
         hypercapnic=None if isnan(gas.paco2) else above(gas.paco2, policy.state.hypercapnia_mmHg),
         ph_above=_ph_above(gas, policy),
-        off_support=off, doubt=gas.doubt or bool(unusual) or implausible is not None,
+        off_support=off, back_on_at=_back_on_at(gas.at, support) if off else None,
+        support_ended=off and _after_the_end(gas.at, support),
+        doubt=gas.doubt or bool(unusual) or implausible is not None,
         unconfirmed=bool(gas.doubted & JUDGED_BY), implausible=implausible,
-        corrected=gas.corrected, disputed=gas.disputed, reasons=reasons,
+        corrected=gas.corrected, disputed=gas.disputed, rivals=gas.rivals, reasons=reasons,
         warnings=tuple(warnings), ids=gas.ids, sao2_percent=_number(gas.sao2),
         explanations=_explanations(gas, policy) if consistent is False else (),
         rule_out=specimen.venous_rule_out(gas.paco2, shock=shock) if gas.site == "venous" else None,
@@ -105,6 +107,13 @@ def is_off_support(at: Instant, support: SupportTime, policy: Policy) -> bool:
     settle = int(policy.response.off_support_after_break_min.value * MINUTE)
     began = (b for b in support.breaks if b.start // MINUTE < at // MINUTE)
     return any(b.end is None or at <= b.end + settle for b in began)
+
+
+def _back_on_at(at: Instant, support: SupportTime) -> Instant | None:
+    """When the mask went on again before a gas; None for one drawn with the mask off, or after the end of support."""
+    if _after_the_end(at, support) or support.drawn_in(at) is not None:
+        return None
+    return max((b.end for b in support.breaks if b.end is not None and b.end <= at), default=None)
 
 
 def _after_the_end(at: Instant, support: SupportTime) -> bool:

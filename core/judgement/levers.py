@@ -132,7 +132,8 @@ def _time_on_mask(f: Facts) -> LeverFigure:
     if f.acidotic and hours < least * of_hours:
         why.append(_say("little_mask_time", hours=hours, of_hours=of_hours, least=least))
     if (drawn_off := f.acidosis_off_support) is not None:
-        why.append(_say("acidosis_off_support", ph=drawn_off.ph, paco2_mmHg=drawn_off.paco2_mmHg, at=drawn_off.at))
+        told = {"ph": drawn_off.ph, "paco2_mmHg": drawn_off.paco2_mmHg, "at": drawn_off.at}
+        why.append(_say("acidosis_off_support", **told, minutes=drawn_off.back_on_minutes))
     enough = [_say("mask_time_enough", hours=hours, of_hours=of_hours, least=least)]
     return _lever("time_on_mask", bool(why), why or (enough if f.acidotic else _acidosis(f)), present)
 

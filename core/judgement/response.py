@@ -320,10 +320,7 @@ _NOT_COMPARED = SinceStart(reasons={"verdict": Message("response.not_compared_wi
 def _unjudged(base: Baseline, gas: GasFigure) -> tuple[Message, ...]:
     """Why a gas that could count does not judge the anchor; empty where it does."""
     if gas.off_support:
-        said = [why.about_gas("off_support", gas)]
-        if gas.state in ("severe", "acidotic"):
-            said.append(Message("response.acidosis_off_support", {"gas_at": gas.at, "ph": gas.ph}))
-        return tuple(said)
+        return tuple(why.off_support(gas))
     if base.gas is None:
         return (base.why,) if base.why is not None else ()
     if gas.at <= base.gas.at:

@@ -96,13 +96,26 @@ def about_gas(key: str, gas: GasFigure) -> Message:
     return Message(f"response.{key}", {"gas_at": gas.at, "site": gas.site})
 
 
+def off_support(gas: GasFigure) -> list[Message]:
+    """Why a gas off support judges nothing, and that it shows an acidosis, as it was drawn."""
+    if gas.back_on_minutes is not None:
+        drawn = {"gas_at": gas.at, "minutes": gas.back_on_minutes, "back_on_at": gas.back_on_at}
+        said = [Message("response.not_steady", drawn)]
+    else:
+        said = [about_gas("after_support" if gas.support_ended else "off_support", gas)]
+    if gas.state in ("severe", "acidotic"):
+        said.append(Message("response.acidosis_off_support", {"gas_at": gas.at, "ph": gas.ph}))
+    return said
+
+
 def doubts(baseline: GasFigure | None, gas: GasFigure) -> list[Message]:
     """What makes either gas doubtful. A doubt is always shown."""
     said: list[Message] = []
     for side, g in (("baseline", baseline), ("gas", gas)):
         if g is None:
             continue
-        for name, true in (("unconfirmed", g.unconfirmed), ("unusual", g.doubt and not g.in_doubt),
+        unusual = g.doubt and not (g.unconfirmed or g.implausible)
+        for name, true in (("unconfirmed", g.unconfirmed), ("unusual", unusual),
                            ("implausible", g.implausible is not None), ("inconsistent", g.consistent is False),
                            ("corrected", g.corrected), ("disputed", g.disputed)):  # fmt: skip
             if true:

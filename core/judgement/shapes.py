@@ -80,6 +80,11 @@ class GasFigure:
     ph_above: float | None = None
     """The upper limit of pH where this one is above it, e.g. 7.45; None elsewhere."""
     off_support: bool = False
+    """Drawn with the mask off, too soon after it went on again, or after support ended: it judges nothing."""
+    back_on_at: Instant | None = None
+    """When the mask had gone on again, where that was too short a time before; None where the mask was off."""
+    support_ended: bool = False
+    """Drawn after support had ended."""
     doubt: bool = False
     """Holds a value outside what is usual, confirmed or not, or values that cannot belong together: always shown."""
     unconfirmed: bool = False
@@ -88,6 +93,8 @@ class GasFigure:
     """Values that cannot belong together, confirmed or not; None where nothing speaks against them."""
     corrected: bool = False
     disputed: bool = False
+    rivals: tuple[tuple[str, str], ...] = ()
+    """By channel what else was recorded for its moment, as typed: two values of one gas differ."""
     reasons: Reasons = field(default_factory=dict)
     warnings: tuple[Message, ...] = ()
     ids: tuple[str, ...] = ()
@@ -101,14 +108,19 @@ class GasFigure:
     """The patient's, nearest to the gas; None while the policy reports gases uncorrected (the default)."""
 
     @property
+    def back_on_minutes(self) -> int | None:
+        """For how many minutes the mask was on again, where that is why it is off support."""
+        return None if self.back_on_at is None else (self.at - self.back_on_at) // MINUTE
+
+    @property
     def is_blood_gas(self) -> bool:
-        """Whether it holds anything that a gas is judged by: a lone lactate is no baseline, and the newest of nothing."""
+        """Whether it holds anything that a gas is judged by: a lone lactate is no baseline and hides no state."""
         return not (self.ph is None and self.paco2_mmHg is None and self.pao2_mmHg is None)
 
     @property
     def in_doubt(self) -> bool:
         """Too doubtful to call anything better, or to end a flag."""
-        return self.unconfirmed or self.implausible is not None
+        return self.unconfirmed or self.implausible is not None or self.disputed
 
 
 @dataclass(frozen=True, slots=True)

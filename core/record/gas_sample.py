@@ -36,6 +36,8 @@ class GasSample:
     """Any of its values nobody confirmed; `doubted` names the channels."""
     corrected: bool = False
     disputed: bool = False
+    rivals: tuple[tuple[str, str], ...] = ()
+    """By channel what else was recorded for this very moment, as typed with its unit; a later value stands."""
     recorded_at: Instant = 0
     ids: tuple[str, ...] = ()
     doubted: frozenset[str] = frozenset()
@@ -67,6 +69,7 @@ def _one(at: Instant, rows: list[Standing]) -> GasSample | None:
     numbers = {s.entry.channel: s.entry.number for s in rows if s.entry.number is not None}
     if not any(k in numbers for k in _MEASURED):
         return None
+    rivals = _rivals(rows)
     site = next((s.entry.words for s in reversed(rows) if s.entry.channel == "site"), None)
     return GasSample(
         at=at,
@@ -76,18 +79,23 @@ def _one(at: Instant, rows: list[Standing]) -> GasSample | None:
         texts={s.entry.channel: (s.entry.raw, s.entry.raw_unit) for s in rows},
         doubt=any(s.entry.doubt for s in rows),
         corrected=any(s.corrected for s in rows),
-        disputed=any(s.disputed for s in rows) or _two_values(rows),
+        disputed=any(s.disputed for s in rows) or bool(rivals),
+        rivals=rivals,
         recorded_at=max(s.entry.recorded_at for s in rows),
         ids=tuple(s.entry.id for s in rows),
         doubted=frozenset(s.entry.channel for s in rows if s.entry.doubt),
     )
 
 
-def _two_values(rows: list[Standing]) -> bool:
-    """Whether one channel was given two different values for this moment: the later stands, and it is disputed."""
-    seen: dict[str, float | str | None] = {}
-    for s in rows:
-        value = s.entry.number if s.entry.number is not None else s.entry.words
-        if seen.setdefault(s.entry.channel, value) != value:
-            return True
-    return False
+def _rivals(rows: list[Standing]) -> tuple[tuple[str, str], ...]:
+    """The values of this moment that a later one of their channel, which differs, took the place of."""
+    last = {s.entry.channel: s for s in rows}
+    return tuple(
+        (s.entry.channel, s.entry.raw if s.entry.channel == "ph" else f"{s.entry.raw} {s.entry.raw_unit}".strip())
+        for s in rows
+        if _value(s) != _value(last[s.entry.channel])
+    )
+
+
+def _value(s: Standing) -> float | str | None:
+    return s.entry.number if s.entry.number is not None else s.entry.words

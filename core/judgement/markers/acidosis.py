@@ -31,18 +31,14 @@ def _low(gas: GasFigure, limit: float) -> Message:
 
 def ph_below_severe(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """pH below 7.25 on any arterial or capillary gas: early, late or off support."""
-    return from_gases(seen, ph_points(seen.gases, rule.limits["ph"], _off))
-
-
-def _off(gas: GasFigure) -> tuple[Message, ...]:
-    return (Message("evidence.off_support", {"at": gas.at}),) if gas.off_support else ()
+    return from_gases(seen, ph_points(seen.gases, rule.limits["ph"], say.drawn))
 
 
 def ph_below_715(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """pH below 7.15 once support has begun."""
     start = seen.support.start
     gases = (g for g in seen.gases if start is not None and (seen.drawn_on_support(g) or g.off_support))
-    return from_gases(seen, ph_points(gases, rule.limits["ph"], _off))
+    return from_gases(seen, ph_points(gases, rule.limits["ph"], say.drawn))
 
 
 def ph_below_715_before_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -90,7 +86,7 @@ def acidosis_off_support(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     for gas in seen.gases:
         if gas.ph is not None:
             met = gas.off_support and gas.ph < rule.limits["ph"]
-            told = (_low(gas, rule.limits["ph"]), *_off(gas), *say.gas_doubts(gas)) if met else ()
+            told = (_low(gas, rule.limits["ph"]), *say.drawn(gas), *say.gas_doubts(gas)) if met else ()
             points.append(Point(gas.at, met, told))
     return from_gases(seen, points)
 

@@ -54,6 +54,8 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "evidence.gas_doubt": ("doubt", "at"),
         "evidence.not_settled": ("gas_at", "because", "missing", "ph"),
         "evidence.off_support": ("at",),
+        "evidence.not_steady": ("minutes", "back_on_at", "at"),
+        "evidence.support_ended": ("at",),
         "evidence.on_oxygen": ("fio2", "at"),
         "evidence.venous": ("at",),
         "evidence.after_beta_agonist": ("at", "text"),
@@ -156,11 +158,21 @@ def unknown(quantity: str) -> Message:
     return Message("evidence.unknown", {"quantity": quantity})
 
 
+def drawn(gas: GasFigure) -> tuple[Message, ...]:
+    """How a gas off support was drawn: the mask off, just on again, or support over."""
+    if gas.back_on_minutes is not None:
+        told = {"minutes": gas.back_on_minutes, "back_on_at": gas.back_on_at, "at": gas.at}
+        return (Message("evidence.not_steady", told),)
+    if not gas.off_support:
+        return ()
+    return (Message("evidence.support_ended" if gas.support_ended else "evidence.off_support", {"at": gas.at}),)
+
+
 def gas_doubts(gas: GasFigure) -> tuple[Message, ...]:
     """What makes a gas doubtful. A doubt is always shown."""
     named = (
         ("unconfirmed", gas.unconfirmed),
-        ("unusual", gas.doubt and not gas.in_doubt),
+        ("unusual", gas.doubt and not (gas.unconfirmed or gas.implausible)),
         ("implausible", gas.implausible is not None),
         ("inconsistent", gas.consistent is False),
         ("corrected", gas.corrected),

@@ -1,5 +1,7 @@
 """No state stands without its doubt where a verdict on it would be in doubt."""
 
+from dataclasses import replace
+
 import pytest
 
 from app.telling.gas_doubt import doubt_reason, doubt_word, rests_on_doubt, state_in_doubt
@@ -15,7 +17,12 @@ CONFIRMED = GasFigure(0, "arterial", ph=6.9, state="severe", doubt=True)
 DISPUTED = GasFigure(0, "arterial", ph=7.3, state="acidotic", disputed=True)
 
 
-@pytest.mark.parametrize("gas", [ODD, UNCONFIRMED])
+def test_what_else_was_recorded_for_the_moment_is_told() -> None:
+    rival = replace(DISPUTED, rivals=(("ph", "7.19"), ("paco2", "9.1 kPa")))
+    assert doubt_word(rival) == "doubtful: pH 7.19, PaCO2 9.1 kPa was recorded for it too"
+
+
+@pytest.mark.parametrize("gas", [ODD, UNCONFIRMED, DISPUTED])
 def test_what_a_state_cannot_rest_on_stands_before_it(gas: GasFigure) -> None:
     assert rests_on_doubt(gas)
     assert state_in_doubt(gas, "severe") == "doubtful: severe"

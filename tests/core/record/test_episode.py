@@ -66,5 +66,6 @@ def test_between_takes_both_ends():
 def test_two_values_of_one_channel_for_one_moment_are_disputed_and_the_later_stands():
     (gas,) = episode("02:00 ph 7.30 paco2 60\n02:00 ph 7.10").gases
     assert (gas.ph, gas.disputed) == (7.10, True)
+    assert gas.rivals == (("ph", "7.30"),)
     (same,) = episode("02:00 ph 7.30 paco2 60\n02:00 ph 7.30").gases
     assert not same.disputed
