@@ -312,7 +312,9 @@ def test_a_bed_s_name_in_a_column_is_asked_about_and_answered_once_for_the_files
     paths = []
     for n in (1, 2):
         paths.append(tmp_path / f"part{n}.csv")
-        paths[-1].write_text(f"Time,Bed,pH\n2026-03-28T0{n}:10:00Z,Bed 7,7.2{n}\n2026-03-28T0{n}:20:00Z,Bed 99,7.30\n")
+        paths[-1].write_text(
+            f"Time,Bed,pH\n2026-03-28T0{n}:10:00Z,Bed 7,7.2{n}\n2026-03-28T0{n}:20:00Z,Bed 99,7.30\n"
+        )
     first = window.doers.file.take_in(*paths)
     until(qtbot, lambda: first.looked is not None)
     choose(first.answers.writer, "person")
