@@ -18,12 +18,13 @@ from app.forms.running_card import RunningCard
 from app.forms.typed_time import typed_iso, typed_time
 from app.look.formats import clock, day
 from app.operations import episode
+from app.operations.begun_target import BegunTarget, begun_target
 from app.operations.episode import BeginRequest, Given
 from app.strip.preview_words import reading_words
 from app.telling.phrases import channel_name
 from app.ward.lane_words import indication_word
 from app.words import sentence
-from core.record.channels import CEILINGS, CHANNELS, HYPERCAPNIC_RISK, INDICATIONS, RESUSCITATION, Group
+from core.record.channels import CEILINGS, CHANNELS, INDICATIONS, RESUSCITATION, Group
 from core.record.instant import Instant
 from core.record.message import Message, RecordError
 
@@ -213,19 +214,32 @@ class BeginForm(PreviewedForm):
     def _is_answer(self, key: str) -> bool:
         return CHANNELS[key].group is Group.PROFILE and key in self.readiness.rows
 
+    def _target(self) -> BegunTarget:
+        """The range by what is typed so far; a moment that cannot be read is taken as now."""
+        now = self.model.session.now()
+        facts = {"indication": str(self.indication.currentData() or "")}
+        facts |= {key: self._number(key) for key in _TARGETS}
+        gas = {k: v for k, v in self.gas.typed().items() if v}
+        given = (Given(now, gas),) if gas else ()
+        return begun_target({k: v for k, v in facts.items() if v}, given, now, self.model.session.policy)
+
     def show_extra(self) -> None:
         """The target that the risk calls for, and what the typed values answer of the checklist."""
-        oxygen = self.model.session.policy.oxygen
-        risk = self.indication.currentData() in HYPERCAPNIC_RISK
+        policy, found = self.model.session.policy, self._target()
+        oxygen = policy.oxygen
         low, high = (
-            (oxygen.risk_target_low, oxygen.risk_target_high) if risk else (oxygen.target_low, oxygen.target_high)
+            (oxygen.risk_target_low, oxygen.risk_target_high)
+            if found.at_risk
+            else (oxygen.target_low, oxygen.target_high)
         )
         for key, limit in (("target_spo2_low", low), ("target_spo2_high", high)):
             self.numbers[key].box.starts_at = limit.value
             self.cells[key].tell(self.tr("{value:g} % if left empty").format(value=limit.value))
-        kind = self.tr("hypercapnic risk") if risk else self.tr("no hypercapnic risk known")
-        source = low.source.partition(";")[0]
-        self.cells["indication"].tell(f"{kind}; {source}" if self.indication.currentData() else kind)
+        kind = self.tr("hypercapnic risk") if found.at_risk else self.tr("no hypercapnic risk known")
+        if found.by_gas:
+            kind = self.tr("hypercapnic risk, by the gas below")
+        told = found.at_risk or self.indication.currentData()
+        self.cells["indication"].tell(f"{kind}; {low.source.partition(';')[0]}" if told else kind)
         self.cells["ceiling_of_care"].tell(self.tr("How far support goes. Resuscitation is recorded separately."))
         self.cells["resuscitation"].tell(self.tr("What is done if the heart stops."))
         values = {r.channel.key: r for _, readings in (self.preview.read if self.preview else ()) for r in readings}

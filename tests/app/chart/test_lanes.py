@@ -287,23 +287,17 @@ UNKNOWN_STATE = (
 @pytest.mark.parametrize("width", [1248, 1334, 1888])
 def test_a_state_is_never_blank_and_never_cut(qtbot, lanes_spec, width, scale):
     theme = LIGHT.scaled(scale)
-    lane = replace(lanes_spec.lanes[0], state_word=UNKNOWN_STATE[0], state_shorter=UNKNOWN_STATE[1:],
-                   due_word="Reassessment overdue 1 h 01 min", flag_word="Gas overdue*; Acidosis off support* +1")  # fmt: skip
+    lane = replace(
+        lanes_spec.lanes[0], state_word=UNKNOWN_STATE[0], state_shorter=UNKNOWN_STATE[1:],
+        due_word="Reassessment overdue 1 h 01 min", flag_word="Gas overdue*; Acidosis off support* +1",
+    )  # fmt: skip
     spec = replace(lanes_spec, lanes=(lane,))
     g = geometry_of(spec, theme, width, 550)
-    drawn: list[str] = []
     painting = LanePainter(spec, theme, g, [])
-    painting._right_words = lambda painter, word, room, ink, **how: drawn.append(
-        (
-            painter.setFont(painting._font_for(word, room.width(), bold=True)),
-            cut_between(painter, word, room.width()),
-        )[1]
-    )
-    image = QImage(width, round(g.lane), QImage.Format.Format_RGB32)
-    painter = QPainter(image)
-    painting._draw_right(painter, lane)
-    painter.end()
-    assert drawn[0] in UNKNOWN_STATE
+    room = g.state - theme.px(16) - theme.px(22)
+    form = painting._state_word(lane, room)
+    assert form in UNKNOWN_STATE
+    assert QFontMetricsF(painting._font_for(form, room, bold=True)).horizontalAdvance(form) <= room
 
 
 def test_what_has_no_room_is_cut_between_its_parts_and_never_left_out(qtbot):

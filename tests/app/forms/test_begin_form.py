@@ -52,6 +52,24 @@ def test_the_target_is_suggested_from_risk_and_a_wrong_age_refused(qtbot, window
     assert answer.record.latest_text("ceiling_of_care") is None  # not asked, so not recorded
 
 
+def test_the_target_told_is_the_one_that_the_program_will_use(qtbot, window):
+    """A gas typed below shows the risk though no indication is chosen."""
+    form = opened(qtbot, window)
+    qtbot.keyClicks(form.words["label"], "Bed 11")
+    form.gas.pressure_unit.buttons["kPa"].click()
+    type_into(qtbot, window, form.gas.fields["ph"], "7.22")
+    assert form.cells["target_spo2_low"].note.text() == "94 % if left empty"
+    type_into(qtbot, window, form.gas.fields["paco2"], "10.6")
+    form.gas.site.buttons["venous"].click()
+    assert form.cells["target_spo2_low"].note.text() == "94 % if left empty"
+    form.gas.site.buttons["arterial"].click()
+    assert form.cells["target_spo2_low"].note.text() == "88 % if left empty"
+    assert form.cells["target_spo2_high"].note.text() == "92 % if left empty"
+    assert form.cells["indication"].note.text().startswith("hypercapnic risk, by the gas below")
+    figures = begin(qtbot, window, form).figures
+    assert (figures.now.spo2_target_low, figures.now.spo2_target_high) == (88, 92)
+
+
 def test_ceiling_and_resuscitation_are_two_answers(qtbot, window):
     form = opened(qtbot, window)
     qtbot.keyClicks(form.words["label"], "Bed 11")
