@@ -272,6 +272,8 @@ class Walker:
             return (*walk_steps.IN_DIALOG, *walk_stores.IN_DIALOG)
         if self.window.keeping.lock.is_locked:
             return (*walk_steps.LOCKED, *walk_stores.LOCKED)
+        if self.window.model is None:
+            return (*walk_steps.NO_STORE, *walk_stores.NO_STORE)
         return (*walk_steps.ALONE, *walk_stores.ALONE)
 
     def _do(self, step: Callable[[Walker, Random], str], chance: Random) -> None:

@@ -287,9 +287,9 @@ def resizes(walker: Walker, chance: Random) -> str:
 
 
 def moves_clock(walker: Walker, chance: Random) -> str:
-    """Time goes by."""
-    minutes = chance.choice((0, 1, 5, 20, 61, 240))
-    walker.say(f"clock +{minutes} min")
+    """Time goes by, and now and then over the end of winter time, or back as a clock that is set right does."""
+    minutes = chance.choice((0, 1, 5, 20, 61, 240, 900, -1, -30))
+    walker.say(f"clock {minutes:+} min")
     walker.clock += minutes * 60_000_000
     if walker.window.model is not None:
         walker.window.model._ticked()
@@ -359,4 +359,7 @@ IN_DIALOG: Final[tuple[tuple[int, Step], ...]] = (
 LOCKED: Final[tuple[tuple[int, Step], ...]] = (
     (10, unlocks), (2, presses_shortcut), (2, presses_key), (2, clicks), (1, uses_mouse), (1, collects),
     (1, others_log), (1, resizes), (1, acts),
+)  # fmt: skip
+NO_STORE: Final[tuple[tuple[int, Step], ...]] = (
+    (4, acts), (2, presses_shortcut), (3, presses_key), (4, clicks), (2, uses_mouse), (1, collects), (1, resizes),
 )  # fmt: skip

@@ -191,3 +191,4 @@ IN_DIALOG: Final[tuple[tuple[int, Step], ...]] = (
     (1, leaves_store), (2, others_begin), (1, others_hold), (1, others_care),
 )  # fmt: skip
 LOCKED: Final[tuple[tuple[int, Step], ...]] = ((1, opens_store), (1, leaves_store), (1, others_begin))
+NO_STORE: Final[tuple[tuple[int, Step], ...]] = ((12, opens_store), (1, leaves_store))

@@ -25,10 +25,11 @@ FULL = 0.02
 
 
 def move_home(folder: Path) -> None:
-    """Settings, stores, cache and what is thrown away lie in one folder."""
+    """Settings, stores, cache and what is thrown away lie in one folder; the night is the one before summer time."""
     homes = (f"XDG_{kind}_HOME" for kind in ("DATA", "CONFIG", "CACHE", "STATE"))
     for name in ("HOME", "LOCALAPPDATA", "APPDATA", "TMPDIR", *homes):
         os.environ[name] = str(folder)
+    os.environ["TZ"] = "Europe/London"
     tempfile.tempdir = None
 
 
