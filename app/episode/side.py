@@ -23,6 +23,7 @@ from app.look.formats import hours, minutes, opened, since, trimmed
 from app.look.signs import Sign
 from app.look.theme import Theme, Tier, Verdict, tier_word, verdict_word
 from app.telling.certainty import certainty_words
+from app.telling.drawn import drawn_word
 from app.telling.finding_names import due_name, lever_name, marker_name
 from app.telling.flag_spans import with_gaps
 from app.telling.gas_doubt import doubt_reason, doubt_word, rests_on_doubt, state_in_doubt
@@ -208,8 +209,7 @@ class _Facts:
     def _state(self, gas: GasFigure) -> str:
         pf = pf_word(self.f, gas, self.reader.gas_unit, self.reader.zone)
         state = beside_pf(pf, gas_state_word(self.f, gas))
-        if gas.off_support:
-            state = translate("side", "{state}, drawn off support").format(state=state)
+        state = ", ".join(part for part in (state, drawn_word(gas)) if part)
         if pf and not ever_acidotic(self.f):  # oxygen alone is what failed
             state = translate("side", "Hypoxaemic: {state}").format(state=state)
         return state_in_doubt(gas, state)

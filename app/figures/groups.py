@@ -10,6 +10,7 @@ from app.figures.rows import FigureGroup, FigureRow, RowInput, RowMaker, doubts_
 from app.figures.trends import trend_rows
 from app.figures.values import input_name, value_text
 from app.look import formats
+from app.telling.drawn import drawn_word
 from app.telling.headline import beside_pf, gas_state_word, pf_word
 from app.words import Reader
 from core.judgement.derived import DerivedFigure, FigureInput, OxygenationFigure
@@ -74,7 +75,7 @@ def class_row(f: EpisodeFigures, gas: GasFigure, reading: GasReading, make: RowM
     if gas.site_assumed:
         notes.append(make.say(Message("gas.site_assumed")).rstrip("."))
     if gas.off_support:
-        notes.append(make.tr("Drawn off support"))
+        notes.append(formats.opened(drawn_word(gas)))
     row = FigureRow("gas_class", make.name("gas_class"), text, gas.at, make.doubted.get(gas.at, ""), tuple(notes),
                     why, make.inputs({k: FigureInput(v, gas.at) for k, v in inputs.items()}), wide=True)  # fmt: skip
     return with_lines(row, (make.say(step) for step in reading.steps))

@@ -8,6 +8,7 @@ from typing import Final
 from app.look import formats
 from app.operations.handover import Handover
 from app.telling.certainty import starred
+from app.telling.drawn import drawn_word
 from app.telling.finding_names import marker_name
 from app.telling.gas_doubt import rests_on_doubt
 from app.telling.headline import ever_acidotic
@@ -55,7 +56,7 @@ class SheetWriter:
             dated = f.now.pf_at is not None and f.now.pf_at != last.at
             at = tr(" at {moment}").format(moment=self._moment(f.now.pf_at)) if dated and f.now.pf_at else ""
             state, pf = f"{first} {self._lines.pressure(f.now.pf_mmHg)}{at}; {lowered(state)}", ""
-        off = tr(", last gas drawn off support") if last.off_support else ""
+        off = tr(", last gas {drawn}").format(drawn=drawn_word(last)) if last.off_support else ""
         values = f"pH {self._lines.ph(last)}, PaCO2 {self._lines.paco2(last)}{pf} at {self._moment(last.at)}"
         doubt = tr("Doubtful gas. ") if rests_on_doubt(last) else ""
         return f"{doubt}{state}{off}: {values}"

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 
 from app.look.formats import fixed, gas_pressure, lately
 from app.look.theme import GasState, Verdict, state_word, verdict_of, verdict_word
+from app.telling.drawn import drawn_short
 from app.telling.gas_doubt import state_in_doubt
 from app.telling.phrases import state_of, translate
 from app.words.verdict_loss import LOST_SINCE, with_loss
@@ -188,7 +189,8 @@ def state_now(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> st
     acidotic."""
     state = beside_pf(pf_word(f, gas, gas_unit, zone), gas_state_word(f, gas))
     if gas.off_support:
-        state = translate("headline", "{state}, last gas off support").format(state=state)
+        last = translate("headline", "{state}, last gas {drawn}")
+        state = last.format(state=state, drawn=drawn_short(gas))
     return state_in_doubt(gas, state)
 
 

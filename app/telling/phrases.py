@@ -10,6 +10,7 @@ from PySide6.QtCore import QCoreApplication
 
 from app.look.formats import fraction, gas_pressure, quantity, trimmed
 from app.look.theme import GasState, Verdict, verdict_of
+from app.telling.drawn import drawn_short
 from app.telling.support_course import Stretch
 from app.words.short_forms import paco2_as_reported, ph_as_reported, two_levels
 from app.words.template import quantity_name
@@ -153,7 +154,7 @@ def gas_name(gas: GasFigure) -> str:
     text = names.get(gas.site, gas.site)
     if gas.site_assumed:
         text += translate("phrases", " (site not said)")
-    return text + (translate("phrases", ", off support") if gas.off_support else "")
+    return ", ".join(part for part in (text, drawn_short(gas)) if part)
 
 
 def state_of(text: str | None) -> GasState:

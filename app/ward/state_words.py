@@ -41,7 +41,7 @@ def state_shorter(f: EpisodeFigures, gas: GasFigure | None, reader: Reader) -> t
     of_ph = translate("ward", "pH {ph}").format(ph=ph) if ph else translate("ward", "pH not known")
     pf = pf_word(f, gas, reader.gas_unit, reader.zone)
     if gas.off_support:
-        off = translate("ward", "off support: {state}")
+        off = translate("ward", "off support: {state}" if gas.back_on_at is None else "just back on: {state}")
         lone = gas_pressure(f.now.pf_mmHg, reader.gas_unit) if pf and f.now.pf_mmHg is not None else ""
         oxygen = dict.fromkeys((f"{pf}; ", f"P/F {lone}; ")) if pf else {"": None}
         forms = [f"{o}{off.format(state=t)}" for o in oxygen for t in (gas_state_word(f, gas), of_ph)]

@@ -36,7 +36,8 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.not_trusted": "{quantity:name} was not to be trusted for {minutes:minutes} from {since:time} to "
         "{at:time}.",
     "evidence.not_settled": "Not judged again by the gas of {gas_at:time}[[ (pH {ph:2})]]: "
-        "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;off support=it was drawn off support;"
+        "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;"
+        "off support=it was drawn off, or just back on, support;"
         "outside=its score is made for other patients than this gas shows;"
         "no answer=it neither meets nor ends it}[[{missing:list} missing]].",
     "evidence.not_steady":

@@ -37,8 +37,8 @@ TEMPLATES: Final[dict[str, str]] = {
     "response.after_support":
         "The gas of {gas_at:time} was drawn after support ended: it is not used for a verdict.",
     "response.not_steady":
-        "The gas of {gas_at:time} was drawn {minutes:minutes} after the mask went on again at {back_on_at:time}, so not "
-        "yet steady: it is not used for a verdict.",
+        "The gas of {gas_at:time} was drawn {minutes:minutes} after the mask went on again at {back_on_at:time}, so "
+        "not yet steady: it is not used for a verdict.",
     "response.off_support":
         "The gas of {gas_at:time} was drawn while the mask was off: it is not used for a verdict.",
     "response.venous_only": "The gas of {gas_at:time} is venous: it gives no verdict on arterial gases.",

@@ -91,7 +91,7 @@ LEAK: Final = (
         "leak_minutes_over", "Minutes over the leak limit", "min",
         "time of the device's samples above the limit, in the span beside it", "definition", "common practice",
         _LEAK_AT + "leak_figure", _LEAK + "test_unintentional_leak_over_its_limit",
-        _DEFINED + " None of typed readings alone: nobody knows how long one lasted.",
+        _DEFINED + " Typed readings have no minutes: nobody knows how long one lasted.",
     ),
     _line(
         "leak_readings_over", "Typed readings over the leak limit", "",

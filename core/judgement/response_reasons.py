@@ -102,7 +102,8 @@ def off_support(gas: GasFigure) -> list[Message]:
         drawn = {"gas_at": gas.at, "minutes": gas.back_on_minutes, "back_on_at": gas.back_on_at}
         said = [Message("response.not_steady", drawn)]
     else:
-        said = [about_gas("after_support" if gas.support_ended else "off_support", gas)]
+        key = "response.after_support" if gas.support_ended else "response.off_support"
+        said = [Message(key, {"gas_at": gas.at, "site": gas.site})]
     if gas.state in ("severe", "acidotic"):
         said.append(Message("response.acidosis_off_support", {"gas_at": gas.at, "ph": gas.ph}))
     return said

@@ -51,7 +51,7 @@ def leaky(f: EpisodeFigures) -> EpisodeFigures:
     at = f.as_of - 2 * HOUR
     leak = LeakFigure(
         40.0, 1.5, 0.5, 2.5, 75.0, 30.0, "unintentional", {}, 44.0, f.as_of, at, at, 55.0, 38.0,
-        ((at, at + 9 * MINUTE),),
+        ((at, at + 9 * MINUTE),), readings_typed=5, readings_typed_over=4,
     )  # fmt: skip
     return replace(f, leak=leak)
 

@@ -96,7 +96,7 @@ def test_a_gas_off_support_is_the_gas_and_not_the_patient(tmp_path: Path) -> Non
         tmp_path,
         "00:40 bpap-st 14/5 28", "03:10 mask off", "03:50 ph 7.31 paco2 60 site arterial", "04:10 mask on",
     )  # fmt: skip
-    assert page.standing.startswith("Acidotic, last gas drawn off support: pH 7.31")
+    assert page.standing.startswith("Acidotic, last gas drawn while the mask was off: pH 7.31")
 
 
 def test_oxygen_that_fails_comes_first(content: SheetContent) -> None:

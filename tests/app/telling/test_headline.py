@@ -87,7 +87,7 @@ def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
     assert state_now(f, f.gases[-1], "mmHg", "UTC") == "P/F 107 mmHg; not acidotic"
     assert state_now(f, f.gases[-1], "kPa", "UTC") == "P/F 14.3 kPa; not acidotic"
     off = replace(f.gases[-1], off_support=True, state="acidotic")
-    assert state_now(f, off, "mmHg", "UTC") == "P/F 107 mmHg; acidotic, last gas off support"
+    assert state_now(f, off, "mmHg", "UTC") == "P/F 107 mmHg; acidotic, last gas with mask off"
 
 
 def test_a_pf_of_an_older_gas_says_its_own_time() -> None:

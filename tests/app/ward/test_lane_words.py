@@ -218,11 +218,11 @@ def test_a_shorter_state_loses_neither_that_its_gas_was_off_support_nor_the_oxyg
         return lane.state_word, lane.state_shorter
 
     whole, shorter = told(gas)
-    assert whole == "P/F 218 mmHg at 00:40; severe, last gas off support"
+    assert whole == "P/F 218 mmHg at 00:40; severe, last gas with mask off"
     assert shorter[0] == "P/F 218 mmHg at 00:40; off support: severe"
     assert shorter[-1] == f"P/F 218 mmHg; off support: pH {gas.ph_text}"
     whole, shorter = told(replace(gas, ph=None, ph_text=None, state="unknown"))
-    assert whole == "P/F 218 mmHg at 00:40; state not known, last gas off support"
+    assert whole == "P/F 218 mmHg at 00:40; state not known, last gas with mask off"
     assert shorter[-1] == "P/F 218 mmHg; off support: pH not known"
     assert all("off support" in form and "P/F 218 mmHg" in form for form in shorter)
 

@@ -95,7 +95,7 @@ DYNAMIC = {
     "gas_class.": [d.name.lower() for d in Disturbance],
     "specimen.": [f"{s}_is_not_arterial" for s in SITES],
     "response.": ["serves_as_baseline", "before_baseline", "baseline_early", "early", "capillary",
-                  "venous_only", "off_support", "unconfirmed", "unusual", "implausible", "inconsistent",
+                  "venous_only", "unconfirmed", "unusual", "implausible", "inconsistent",
                   "corrected", "disputed"],
     "effect.": ["fio2", "o2_flow", "ti", "interface", "mode"],
 }  # fmt: skip

@@ -82,6 +82,26 @@ def test_a_gas_of_the_minute_in_which_the_mask_went_on_was_drawn_without_it():
     assert figure.off_support
 
 
+@pytest.mark.parametrize(("clock", "minutes"), [("02:20", None), ("02:30", None), ("02:35", 5), ("03:00", 30)])
+def test_a_gas_soon_after_the_mask_went_on_again_says_so_and_is_drawn_on_what_is_set(clock, minutes):
+    (figure,) = gases(START + f"02:00 break start\n02:30 break end\n{clock} ph 7.30 paco2 60 pao2 60 site arterial")
+    assert figure.off_support
+    assert not figure.support_ended
+    assert figure.back_on_minutes == minutes
+    assert (figure.fio2_from == "setting") is (minutes is not None)
+
+
+def test_a_gas_after_the_end_says_that_support_had_ended():
+    log = START + "02:00 break start\n02:30 break end\n02:40 stopped\n02:50 ph 7.30 paco2 60"
+    (figure,) = gases(log)
+    assert (figure.off_support, figure.support_ended, figure.back_on_at) == (True, True, None)
+
+
+def test_on_steady_support_there_is_nothing_of_a_break_to_say():
+    (figure,) = gases(START + "02:00 break start\n02:30 break end\n03:01 ph 7.30 paco2 60")
+    assert (figure.off_support, figure.support_ended, figure.back_on_at) == (False, False, None)
+
+
 def test_after_the_end_the_setting_says_nothing_about_oxygen():
     log = START + "02:00 ph 7.30 paco2 60 pao2 60 site arterial\n02:00 stopped\n02:40 ph 7.36 paco2 50 pao2 60"
     last_on, after = gases(log)
