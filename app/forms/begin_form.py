@@ -237,8 +237,8 @@ class BeginForm(PreviewedForm):
             self.cells[key].tell(self.tr("{value:g} % if left empty").format(value=limit.value))
         kind = self.tr("hypercapnic risk") if found.at_risk else self.tr("no hypercapnic risk known")
         if found.by_gas:
-            kind = self.tr("hypercapnic risk, by the gas below")
-        told = found.at_risk or self.indication.currentData()
+            kind = self.tr("hypercapnic risk, by the gas typed below")
+        told = not found.by_gas and (found.at_risk or self.indication.currentData())
         self.cells["indication"].tell(f"{kind}; {low.source.partition(';')[0]}" if told else kind)
         self.cells["ceiling_of_care"].tell(self.tr("How far support goes. Resuscitation is recorded separately."))
         self.cells["resuscitation"].tell(self.tr("What is done if the heart stops."))

@@ -5,9 +5,8 @@ from __future__ import annotations
 import re
 
 from core.record.instant import Instant
+from core.record.line_time import moment_typed
 from core.record.local_time import wall_time_near, zoned_iso
-from core.record.log_line import read_line
-from core.record.settings import NO_SETTINGS
 
 _WALL = re.compile(r"(?:(first|second)\s+)?(\d{1,2}):(\d{2})", re.IGNORECASE)
 
@@ -20,7 +19,7 @@ def typed_time(text: str, now: Instant, zone: str) -> Instant | None:
     """
     if not text.strip():
         return None
-    return read_line(f"{text} checked no change", now=now, zone=zone, in_force=NO_SETTINGS).at
+    return moment_typed(text, now, zone)
 
 
 def typed_near(text: str, near: Instant, now: Instant, zone: str) -> Instant | None:

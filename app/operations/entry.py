@@ -16,6 +16,7 @@ from core.record.local_time import check_not_future
 from core.record.log_line import LogLine, read_line
 from core.record.message import Message, refuse
 from core.record.settings import SettingsInForce
+from core.record.support import begins_unseen
 
 if TYPE_CHECKING:
     from storage.store import Store
@@ -80,6 +81,8 @@ def _previewed(store: Store, now: Instant, request: LineRequest) -> Preview:
     line = replace(line, at=moment_of_gas(line.readings, line.at, episode))
     check_not_future(line.at, now)
     check_target(episode, line.at, line.readings)
+    if begins_unseen(episode, line.at, line.readings):
+        line = replace(line, notes=(*line.notes, Message("line.start_unseen", {"accepted": "support started"})))
     return Preview(episode.key, episode.label, line, questions(store, episode, line.at, line.readings))
 
 

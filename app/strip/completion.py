@@ -19,6 +19,7 @@ _FIRST = (
     "gas sent",
     "mask off",
     "mask on",
+    "support started",
     "note",
 )
 """What a night types most stands first."""

@@ -33,7 +33,9 @@ LINES: Final[tuple[tuple[str, Any], ...]] = (
     ("cpap 10 60", QT_TRANSLATE_NOOP("help", "CPAP 10 cmH2O, FiO2 60 %")),
     ("rr28 spo291", QT_TRANSLATE_NOOP("help", "a value may touch its name")),
     ("flow 4", QT_TRANSLATE_NOOP("help", "oxygen by flow, L/min; FiO2 is not known then")),
-    ("gas sent | mask off | mask on", QT_TRANSLATE_NOOP("help", "events")),
+    ("gas sent | mask on | mask off 20m ago", QT_TRANSLATE_NOOP("help", "events; a time may stand last as well")),
+    ("support started | support started 23:40", QT_TRANSLATE_NOOP(
+        "help", "support starts at the time of the line, or started then; its hours count from there")),
     ("label Bed 12", QT_TRANSLATE_NOOP("help", "the patient moved; other facts by the form 'Patient facts'")),
     ("note ... | told ... | handover remark ...", QT_TRANSLATE_NOOP("help", "words to the end of the line")),
 )  # fmt: skip

@@ -10,12 +10,20 @@ from core.record.channels import CHANNELS, Channel, Kind
 _BEGINS_A_VALUE = re.compile(r"\d|[.,]\d")
 
 
+_MOST_WORDS = 3
+"""Words that the name of a channel may have on the line."""
+
+
 def words_of_channels() -> dict[str, Channel]:
-    """Every word that names a channel on the line: keys, keys with spaces, short words."""
+    """Every word that names a channel on the line: keys, keys with spaces, short words, names as shown."""
     found: dict[str, Channel] = {}
     for c in CHANNELS.values():
         for word in (c.key, c.key.replace("_", " "), *c.short):
             found.setdefault(word, c)
+    for c in CHANNELS.values():
+        name = c.name.casefold()
+        if len(name.split()) <= _MOST_WORDS and name.replace(" ", "").isalnum():
+            found.setdefault(name, c)
     return found
 
 

@@ -2,7 +2,7 @@
 
 The grammar, in order:
 
-    [time] item...
+    [time] item... | item... time
     time   14:20 | yesterday 23:40 | first 01:30 | second 01:30 | 20m ago | 1h ago | now
     item   16/6 [35]             IPAP / EPAP, then FiO2
            ps 10                 pressure support: IPAP is EPAP + 10
@@ -10,6 +10,7 @@ The grammar, in order:
            CHANNEL VALUE [UNIT]  a key or short word of the registry; the value may touch it: rr28
            cpap 10 [40]          one pressure, then FiO2
            MODE                  bpap-st, cpap, off ... alone
+           MOMENT [time]         support started 01:20: a fact that is a time; without one the line's own
            EVENT                 gas sent, mask off ... alone; note, told, drug and texts take the rest
 
 Nothing is recorded here: the line says what it would record, asks about soft limits, and refuses in words.
@@ -18,43 +19,27 @@ Nothing is recorded here: the line says what it would record, asks about soft li
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from dataclasses import dataclass
 from math import isnan
 from typing import NoReturn
 
-from core.record.channels import CHANNELS, MODES, Channel, Group, Kind
+from core.record.channels import CHANNELS, Channel, Group, Kind
 from core.record.entries import NewEntry, from_reading
-from core.record.instant import HOUR, MINUTE, Instant
+from core.record.instant import HOUR, Instant, iso
+from core.record.line_time import check_no_bare_time, ends_in_time, moment_typed, read_time, time_behind
 from core.record.line_words import CHANNEL_WORDS, names_beginning, parted
-from core.record.local_time import latest_wall_time
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
-from core.record.settings import Settings
+from core.record.settings import Settings, settings_after
+from core.record.typed_first import INSTEAD, MODE_WORDS, SAME, named_apart, spaced_pair, two_meanings
 from core.record.units import MMHG_GAS
 
 EXAMPLE = "16/6 35 | ipap 16 epap 6 fio2 35% | 14:20 rr 28 spo2 91 | gas sent | note ..."
 
-_TIME = re.compile(
-    r"(yesterday\s+)?(?:(first|second)\s+)?(\d{1,2}):(\d{2})(?:\s+(first|second)\b)?(?=\s|$)", re.IGNORECASE
-)
-_AGO = re.compile(r"(\d{1,3})\s*(m|min|h)\s+ago(?=\s|$)", re.IGNORECASE)
 _NUMBER = re.compile(r"[+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+)")
 _VALUE = re.compile(r"([+-]?(?:\d+(?:[.,]\d+)?|[.,]\d+))(.*)")
 _PAIR = re.compile(r"(\d+(?:[.,]\d+)?)/(\d+(?:[.,]\d+)?)")
-_MODE_WORDS = {"st": "BPAP-ST", "hfn": "high-flow nasal"} | {m.casefold(): m for m in MODES}
-TIME_FORMS = "14:20 | yesterday 23:40 | 20m ago | 1h ago | now"
-_LIKE_A_TIME = re.compile(
-    r"\d{1,2}[.h]\d{2}|\d{3,4}|\d{1,2}:\d{2}:.*|\d{4}-\d{2}.*|\d{1,2}[-./][A-Za-z]{3}.*|\d{1,2}[./]\d{1,2}[./].*",
-    re.ASCII,
-)
-_INSTEAD = {
-    "gas": "ph 7.24 paco2 62 pao2 58, or the form of a blood gas (F11)",
-    "abg": "ph 7.24 paco2 62 pao2 58, or the form of a blood gas (F11)",
-    "bed": "label Bed 12, or the form of the patient's facts (Shift+F11)",
-    "ceiling": "ceiling of care no intubation, or the form of the patient's facts (Shift+F11)",
-}
-"""What people type first, and how it is said on the line."""
 OXYGEN_FORMS = "fio2 40% | flow 4"
 LEAST_PERCENT = 21.0
 """No flow of a mask or a wall reaches this in L/min but high-flow oxygen, which is set by FiO2 as well."""
@@ -104,18 +89,29 @@ def read_line(
     Raises:
         RecordError: naming the word that could not be read and what is accepted.
     """
-    at, rest, typed = _read_time(text.strip().lstrip("/ "), now, zone)
+    at, rest, typed = read_time(text.strip().lstrip("/ "), now, zone)
     if not rest:
         raise refuse("line.empty", accepted=EXAMPLE)
     before = in_force if isinstance(in_force, Settings) else in_force(at)
-    reader = _Items(rest.split(), before, gas_unit)
+
+    def moment(said: str) -> Instant:
+        return moment_typed(said, now, zone) if said else at
+
+    reader = _Items(rest.split(), before, gas_unit, moment)
     readings = reader.read()
+    if reader.time_behind and typed:
+        raise refuse("line.time_twice", accepted="one time on a line")
+    if reader.time_behind:  # read anew over the settings of that moment
+        first = f"{reader.time_behind} {' '.join(reader.words[: reader.i])}"
+        return read_line(first, now=now, zone=zone, in_force=in_force, gas_unit=gas_unit)
+    if not typed and (inside := ends_in_time(reader.rest)):
+        reader.notes.append(Message("line.time_in_words", {"time": inside}))
     if typed and now - at > LONG_AGO:
         reader.notes.append(Message("line.long_ago", {"hours": (now - at) / HOUR}))
     keys = {r.channel.key for r in readings if r.channel.group is Group.GAS}
     if keys - {"gas_fio2"} and "site" not in keys:
         reader.notes.append(Message("line.site_assumed"))
-    after = _after(before, readings)
+    after = settings_after(before, readings)
     if after.is_bilevel and after.ipap <= after.epap:
         raise refuse("settings.ipap_not_above_epap", ipap=after.ipap, epap=after.epap, accepted="IPAP above EPAP")
     return LogLine(at, typed, tuple(readings), before.pressure_support, after.pressure_support,
@@ -128,42 +124,17 @@ def _check_no_step(name: str, text: str) -> None:
         raise refuse("line.signed", channel=name, value=text, accepted="the new value itself, without a sign")
 
 
-def _read_time(text: str, now: Instant, zone: str) -> tuple[Instant, str, bool]:
-    if match := _TIME.match(text):
-        which = (match[2] or match[5] or "").lower()
-        hour, minute = int(match[3]), int(match[4])
-        at = latest_wall_time(hour, minute, now=now, zone=zone, which=which, yesterday=bool(match[1]))
-        return at, text[match.end() :].strip(), True
-    if match := _AGO.match(text):
-        unit = HOUR if match[2].lower() == "h" else MINUTE
-        return now - int(match[1]) * unit, text[match.end() :].strip(), True
-    head, _, tail = text.partition(" ")
-    return (now, tail.strip(), False) if head.lower() == "now" else (now, text, False)
-
-
-def _after(before: Settings, readings: Sequence[Reading]) -> Settings:
-    """The settings in force once the readings are."""
-    got = {r.channel.key: r.value for r in readings}
-
-    def number(key: str, old: float) -> float:
-        value = got.get(key)
-        return value if isinstance(value, float) else old
-
-    mode = got.get("mode")
-    return Settings(
-        mode if isinstance(mode, str) else before.mode,
-        number("ipap", before.ipap), number("epap", before.epap), number("cpap", before.cpap),
-        number("fio2", before.fio2), number("o2_flow", before.o2_flow),
-        number("rate_set", before.rate_set), number("ti", before.ti), before.interface,
-    )  # fmt: skip
-
-
 class _Items:
     """Reads the items of a line from left to right."""
 
-    def __init__(self, words: list[str], in_force: Settings, gas_unit: str) -> None:
+    def __init__(self, words: list[str], in_force: Settings, gas_unit: str, moment: Callable[[str], Instant]) -> None:
         self.words = words
         self.gas_unit = gas_unit
+        self.moment = moment
+        self.time_behind = ""
+        """A time that stands last on the line; `i` is where it begins then, and nothing was settled."""
+        self.rest = ""
+        """The words that a text took."""
         self.i = 0
         self.in_force = in_force
         self.notes: list[Message] = []
@@ -172,6 +143,10 @@ class _Items:
 
     def read(self) -> list[Reading]:
         while self.i < len(self.words):
+            if self.readings and (behind := time_behind(self.words[self.i :])):
+                self.time_behind = behind
+                return self.readings
+            self._tidy()
             self._item()
         self._settle_pressures()
         self._settle_support()
@@ -181,6 +156,17 @@ class _Items:
             if keys.count(key) > 1:
                 raise refuse("line.twice", channel=key, accepted="one value of a channel on a line")
         return self.readings
+
+    def _tidy(self) -> None:
+        """Write what stands here as the grammar has it, where it can mean one thing only."""
+        word = self.words[self.i]
+        pair, count = spaced_pair(self.words[self.i : self.i + 3])
+        if pair:
+            self.words[self.i : self.i + count] = [pair]
+        elif (apart := named_apart(word, CHANNEL_WORDS)) is not None:
+            self.words[self.i : self.i + 1] = apart
+        elif (same := SAME.get(word.casefold())) is not None:
+            self.words[self.i : self.i + 1] = same
 
     def _item(self) -> None:
         word = self.words[self.i]
@@ -196,9 +182,8 @@ class _Items:
             self._channel_item(channel)
         elif low in ("o2", "oxygen"):
             self._oxygen()
-        elif low in _MODE_WORDS:
-            self.i += 1
-            self._add("mode", _MODE_WORDS[low])
+        elif (named := self._mode()) is not None:
+            self._add("mode", named)
         elif _NUMBER.fullmatch(word) and not self.readings:
             self._bare_numbers()
         elif (apart := parted(word)) is not None:
@@ -207,12 +192,25 @@ class _Items:
             self._refuse_word(word)
 
     def _refuse_word(self, word: str) -> NoReturn:
-        if not self.readings and _LIKE_A_TIME.fullmatch(word):
-            raise refuse("line.time_form", value=word, accepted=TIME_FORMS)
-        instead, longer = _INSTEAD.get(word.casefold()), names_beginning(word)
+        if not self.readings:
+            check_no_bare_time(self.words[self.i :])
+        if _NUMBER.fullmatch(word):
+            raise refuse("line.number_alone", value=word, accepted=EXAMPLE)
+        if (two := two_meanings(self.words[self.i :])) is not None:
+            raise refuse("line.two_meanings", word=two[0], accepted=two[1])
+        instead, longer = INSTEAD.get(word.casefold()), names_beginning(word)
         if longer and instead is None:  # `mask offf`: the word behind it is the one to mend
             word, instead = " ".join(self.words[self.i : self.i + 2]), " | ".join(longer)
         raise refuse("line.word_unknown", word=word, accepted=instead or EXAMPLE)
+
+    def _mode(self) -> str | None:
+        """The mode named here, two words first; leaves the reader behind it."""
+        for count in (2, 1):
+            mode = MODE_WORDS.get(" ".join(self.words[self.i : self.i + count]).casefold())
+            if mode is not None:
+                self.i += count if self.i + count <= len(self.words) else 1
+                return mode
+        return None
 
     def _channel(self) -> Channel | None:
         """The channel named here, two words first; leaves the reader behind the name."""
@@ -236,6 +234,10 @@ class _Items:
         elif channel.kind in (Kind.MARK, Kind.TEXT, Kind.INSTANT):
             rest = " ".join(self.words[self.i :])
             self.i = len(self.words)
+            if channel.kind is Kind.INSTANT:
+                rest = iso(self.moment(rest))
+            else:
+                self.rest = rest
             self.readings.append(read_value(channel, rest))
         elif channel.kind is Kind.CHOICE:
             self._choice(channel)
@@ -252,11 +254,15 @@ class _Items:
                 return
         text = self.words[self.i] if self.i < len(self.words) else ""
         self.i += 1
-        self._add(channel.key, _MODE_WORDS.get(text.casefold(), text) if channel.key == "mode" else text)
+        self._add(channel.key, MODE_WORDS.get(text.casefold(), text) if channel.key == "mode" else text)
 
     def _number(self, channel: Channel) -> None:
+        if self.i < len(self.words):
+            self.words[self.i : self.i + 1] = [w for w in (self.words[self.i].lstrip(":="),) if w]
         if self.i >= len(self.words):
             raise refuse("line.value_missing", channel=channel.key, accepted=f"{channel.key} NUMBER")
+        if channel.key == "sbp":
+            self._tidy()
         if channel.key == "sbp" and (pair := _PAIR.fullmatch(self.words[self.i])):
             self.i += 1
             self._add("sbp", pair[1])
@@ -284,9 +290,12 @@ class _Items:
 
     def _bare_numbers(self) -> None:
         """`16 6 35`: two bare numbers are IPAP and EPAP, a third FiO2. One alone says nothing."""
-        if not self._number_follows(1):
-            if self.i + 1 < len(self.words) and _LIKE_A_TIME.fullmatch(self.words[self.i]):
-                raise refuse("line.time_form", value=self.words[self.i], accepted=TIME_FORMS)
+        here = self.words[self.i :]
+        if len(here) > 1:
+            check_no_bare_time(here, digits_only=True)
+        if len(here) < 2 or not _NUMBER.fullmatch(here[1].rstrip("%")):
+            if len(here) > 1:
+                check_no_bare_time(here)
             raise refuse("line.number_alone", value=self.words[self.i], accepted=EXAMPLE)
         self._add("ipap", self.words[self.i])
         self._add("epap", self.words[self.i + 1])

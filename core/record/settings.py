@@ -6,7 +6,7 @@ on flow, leak and ventilation. A flow of 0 is room air: the machine draws it fro
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 from functools import cached_property
 from math import isnan, nan
@@ -16,6 +16,7 @@ import numpy as np
 from core.record.channels import BILEVEL_MODES
 from core.record.episode import Episode
 from core.record.instant import MINUTE, Instant
+from core.record.reading import Reading
 from core.record.samples import Times, Values
 
 ROOM_AIR = 0.21
@@ -188,3 +189,20 @@ class SettingsInForce:
         """
         fio2, minute = self.fio2, at - at % MINUTE
         return fio2.before(minute) if fio2.t.size and fio2.t[0] < minute else fio2.at(at)
+
+
+def settings_after(before: Settings, readings: Iterable[Reading]) -> Settings:
+    """The settings in force once the readings are."""
+    got = {r.channel.key: r.value for r in readings}
+
+    def number(key: str, old: float) -> float:
+        value = got.get(key)
+        return value if isinstance(value, float) else old
+
+    mode = got.get("mode")
+    return Settings(
+        mode if isinstance(mode, str) else before.mode,
+        number("ipap", before.ipap), number("epap", before.epap), number("cpap", before.cpap),
+        number("fio2", before.fio2), number("o2_flow", before.o2_flow),
+        number("rate_set", before.rate_set), number("ti", before.ti), before.interface,
+    )  # fmt: skip

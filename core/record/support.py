@@ -6,13 +6,14 @@ wins: a break of no length is no break, and a mask that was on for no time was n
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from core.record.channels import MODES, Group, by_group
 from core.record.episode import Episode, Series, Words
 from core.record.instant import DAY, HOUR, MINUTE, Instant
-from core.record.settings import SETTING_NUMBERS, SETTING_WORDS, SettingsInForce
+from core.record.reading import Reading
+from core.record.settings import SETTING_NUMBERS, SETTING_WORDS, SettingsInForce, settings_after
 
 SUPPORT_MODES = frozenset(MODES) - {"off"}
 SETTLED = 10 * MINUTE
@@ -136,6 +137,20 @@ def _seen_to_begin(episode: Episode, first: Instant | None) -> bool:
     written = [int(s.spots.t[0]) for c in by_group(Group.VITAL) if len((s := episode.number(c.key)).spots)]
     written += [int(w.t[0]) for g in (Group.VITAL, Group.EVENT) for c in by_group(g) if len(w := episode.text(c.key))]
     return any(t <= first - SETTLED for t in written)
+
+
+def begins_unseen(episode: Episode, at: Instant, readings: Sequence[Reading]) -> bool:
+    """Whether readings begin the support of an episode that has none, and nothing says that it began there.
+
+    Its start is then not recorded: support may have been running when logging began.
+    """
+    keys = {r.channel.key for r in readings}
+    settings = SettingsInForce(episode)
+    after = settings_after(settings.at(at), readings)
+    begins = after.mode in SUPPORT_MODES or after.is_bilevel or after.is_cpap
+    if not begins or keys & {"started_at", "mask_on"} or support_time(episode, settings).start is not None:
+        return False
+    return not _seen_to_begin(episode, at)
 
 
 def _end(episode: Episode, settings: SettingsInForce) -> tuple[Instant | None, str | None]:

@@ -65,7 +65,7 @@ def test_the_target_told_is_the_one_that_the_program_will_use(qtbot, window):
     form.gas.site.buttons["arterial"].click()
     assert form.cells["target_spo2_low"].note.text() == "88 % if left empty"
     assert form.cells["target_spo2_high"].note.text() == "92 % if left empty"
-    assert form.cells["indication"].note.text().startswith("hypercapnic risk, by the gas below")
+    assert form.cells["indication"].note.text().startswith("hypercapnic risk, by the gas typed below")
     figures = begin(qtbot, window, form).figures
     assert (figures.now.spo2_target_low, figures.now.spo2_target_high) == (88, 92)
 

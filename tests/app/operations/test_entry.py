@@ -7,7 +7,7 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
-from app.operations import correction, entry, episode, facts
+from app.operations import correction, entry, episode, facts, figures
 from app.words import sentence
 from core.record.instant import HOUR, MINUTE, SECOND, parse
 from core.record.message import RecordError
@@ -38,6 +38,17 @@ def test_a_line_is_previewed_without_being_recorded(store: Store) -> None:
     assert (shown.episode, shown.label) == ("A", "Bed A")
     assert shown.line.support_after == 10
     assert store.head() == head
+
+
+def test_support_that_nothing_shows_to_begin_is_told_and_one_word_makes_its_hours_count(store: Store) -> None:
+    shown = entry.preview(store, "AB", NOW, line("02:10 bpap-st 16/6 35")).value
+    assert [n.key for n in shown.line.notes] == ["line.start_unseen"]
+    assert "'support started'" in sentence(shown.line.notes[0])
+    told = entry.preview(store, "AB", NOW, line("02:10 bpap-st 16/6 35 support started")).value
+    assert "line.start_unseen" not in [n.key for n in told.line.notes]
+    log(store, "02:10 bpap-st 16/6 35 support started")
+    made = figures.of_episode(store, "AB", NOW, figures.EpisodeRequest("A", NOW)).value.figures
+    assert made.support.hours_on_mask == pytest.approx(20 / 60)
 
 
 def test_a_line_is_recorded_with_who_and_when(store: Store) -> None:

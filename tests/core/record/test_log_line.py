@@ -62,8 +62,16 @@ def values(text, in_force=BILEVEL):
         ("/16/6 35", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
         ("/ rr 28", {"rr": 28.0}),
         ("ceiling of care no intubation", {"ceiling_of_care": "no intubation"}),
+        ("backup rate 16", {"rate_set": 16.0}), ("respiratory rate 22", {"rr": 22.0}),
+        ("spo2:91", {"spo2": 91.0}), ("spo2: 91 rr = 22", {"spo2": 91.0, "rr": 22.0}),
+        ("note: tired", {"note": "tired"}), ("site: venous ph:7.31", {"site": "venous", "ph": 7.31}),
+        ("18 / 6", {"ipap": 18.0, "epap": 6.0}), ("18/ 6 40", {"ipap": 18.0, "epap": 6.0, "fio2": 0.4}),
+        ("bp 118 / 64", {"sbp": 118.0, "dbp": 64.0}), ("16 /6 35", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
+        ("hfnc fio2 60%", {"mode": "high-flow nasal", "fio2": 0.6}), ("hfnc", {"mode": "high-flow nasal"}),
+        ("high-flow nasal", {"mode": "high-flow nasal"}), ("pressure control 18/6", {
+            "mode": "pressure control", "ipap": 18.0, "epap": 6.0}), ("vomited", {"vomiting": None}),
     ],
-)
+)  # fmt: skip
 def test_lines_are_read(text, expected):
     assert values(text) == expected
 
@@ -131,6 +139,81 @@ def test_times_are_read():
     assert read("20m ago rr 20").at == NOW - 20 * MINUTE
     assert read("1h ago rr 20").at == NOW - 60 * MINUTE
     assert read("rr 20").at == NOW
+
+
+@pytest.mark.parametrize(
+    ("text", "at", "expected"),
+    [
+        ("mask off 20m ago", "2026-03-28T01:50:00+00:00", {"mask_off": None}),
+        ("mask off 20 min ago", "2026-03-28T01:50:00+00:00", {"mask_off": None}),
+        ("mask on at 01:20", "2026-03-28T01:20:00+00:00", {"mask_on": None}),
+        ("16/6 35 yesterday 23:40", "2026-03-27T23:40:00+00:00", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
+        ("rr 28 spo2 91 01:40", "2026-03-28T01:40:00+00:00", {"rr": 28.0, "spo2": 91.0}),
+        ("at 01:40 rr 20", "2026-03-28T01:40:00+00:00", {"rr": 20.0}),
+    ],
+)
+def test_a_time_may_stand_last(text, at, expected):
+    line = read(text)
+    assert (iso(line.at), line.time_typed) == (at, True)
+    assert {r.channel.key: r.value for r in line.readings} == expected
+
+
+def test_a_time_that_stands_last_brings_the_settings_of_its_moment():
+    line = read_line("ipap 18 20m ago", now=NOW, zone="UTC",
+                     in_force=lambda at: BILEVEL if at < NOW - 15 * MINUTE else ON_CPAP)  # fmt: skip
+    assert (line.support_before, line.support_after) == (9.0, 13.0)
+
+
+def test_a_time_among_words_stays_there_and_is_told():
+    line = read("drug salbutamol 20m ago")
+    assert line.at == NOW
+    assert [r.value for r in line.readings] == ["salbutamol 20m ago"]
+    assert [(n.key, n.values["time"]) for n in line.notes] == [("line.time_in_words", "20m ago")]
+    assert read("note settled").notes == read("01:40 note better than at 01:20").notes == ()
+
+
+@pytest.mark.parametrize(
+    ("text", "at", "started"),
+    [
+        ("support started", NOW, NOW),
+        ("support started 01:20", NOW, NOW - 50 * MINUTE),
+        ("01:20 support started", NOW - 50 * MINUTE, NOW - 50 * MINUTE),
+        ("01:20 bpap-st 16/5 28 support started", NOW - 50 * MINUTE, NOW - 50 * MINUTE),
+        ("started_at 2026-03-28T01:20:00+00:00", NOW, NOW - 50 * MINUTE),
+    ],
+)
+def test_a_fact_that_is_a_time_takes_it_as_the_line_does(text, at, started):
+    line = read(text)
+    assert line.at == at
+    assert line.readings[-1].channel.key == "started_at"
+    assert line.readings[-1].number == started
+
+
+@pytest.mark.parametrize(
+    ("text", "key", "named"),
+    [
+        ("rate 16", "line.two_meanings", ["br 16", "rr 16", "backup rate", "respiratory rate"]),
+        ("rate 110", "line.two_meanings", ["rr 110", "hr 110"]),
+        ("16/6 rate 16", "line.two_meanings", ["br 16", "rr 16"]),
+        ("air", "line.two_meanings", ["fio2 21", "mask off"]),
+        ("room air", "line.two_meanings", ["fio2 21", "mask off"]),
+        ("0325 rr 26", "line.time_form", ["03:25 rr 26"]),
+        ("0230 20/5", "line.time_form", ["02:30 20/5"]),
+        ("0230 20 5", "line.time_form", ["02:30 20 5"]),
+        ("3.25 rr 26", "line.time_form", ["03:25 rr 26"]),
+        ("2575 rr 26", "line.time_form", ["14:20"]),
+        ("support started half one", "line.time_form", ["14:20"]),
+        ("01:40 mask off 20m ago", "line.time_twice", ["one time"]),
+        ("hfnc 60", "line.number_alone", ["16/6 35"]),
+    ],
+)
+def test_what_could_mean_two_things_is_refused_with_each(text, key, named):
+    with pytest.raises(RecordError) as refused:
+        read(text)
+    assert refused.value.message.key == key
+    assert all(n in refused.value.message.values["accepted"] for n in named)
+    assert "hr 16" in refused.value.message.values["accepted"] or text != "rate 16"
+    assert "br 110" not in refused.value.message.values["accepted"]
 
 
 def test_a_gas_whose_site_nobody_named_says_that_it_is_taken_as_arterial():

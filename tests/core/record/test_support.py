@@ -8,8 +8,9 @@ from core.record.entries import Action, NewEntry, recorded
 from core.record.episode import build_episode
 from core.record.instant import HOUR
 from core.record.knowledge import standing
-from core.record.settings import SettingsInForce
-from core.record.support import support_time
+from core.record.log_line import read_line
+from core.record.settings import NO_SETTINGS, SettingsInForce
+from core.record.support import begins_unseen, support_time
 from tests.support.log import device, entries, episode, moment
 
 
@@ -162,3 +163,19 @@ def _new(e):
 def support_of(log):
     e = build_episode("E1", standing(log))
     return support_time(e, SettingsInForce(e))
+
+
+def test_support_that_begins_on_a_line_is_seen_or_not():
+    def unseen(log, line, at="02:00"):
+        record = episode(log)
+        read = read_line(line, now=moment(at), zone="UTC", in_force=NO_SETTINGS)
+        return begins_unseen(record, moment(at), read.readings)
+
+    assert unseen("01:55 label Bed_1", "bpap-st 16/5 28")
+    assert unseen("01:55 label Bed_1", "hfnc fio2 50%")
+    assert not unseen("01:55 label Bed_1", "bpap-st 16/5 28 support started")
+    assert not unseen("01:55 label Bed_1", "bpap-st 16/5 28 mask on")
+    assert not unseen("01:30 ph 7.25 paco2 70", "bpap-st 16/5 28")
+    assert not unseen("01:30 bpap-st 14/5", "16/5 28")  # it has begun
+    assert not unseen("01:30 support started", "16/5 28")
+    assert not unseen("01:55 label Bed_1", "rr 20")
