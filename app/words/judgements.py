@@ -39,7 +39,12 @@ EVIDENCE: Final[dict[str, str]] = {
         "{because:pick missing=;venous=it is venous;doubtful=it is in doubt;"
         "off support=it was drawn off, or just back on, support;"
         "outside=its score is made for other patients than this gas shows;"
-        "no answer=it neither meets nor ends it}[[{missing:list} missing]].",
+        "early=it is an early gas, so not yet steady;"
+        "other hours=pH has not risen beyond measurement error, and it was drawn outside the hours that the "
+        "flag judges (;"
+        "score hours=its points do not rule it out, and it was drawn outside the hours that the flag judges (;"
+        "no answer=it is not good enough to end the flag, and is outside what the flag asks}"
+        "[[{missing:list} missing]][[{from_min:minutes} to ]][[{to_min:minutes} after the start or a change)]].",
     "evidence.not_steady":
         "This gas was drawn {minutes:minutes} after the mask went on again at {back_on_at:time}, so not yet steady.",
     "evidence.off_support": "This gas was drawn while the mask was off.",
@@ -68,6 +73,10 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.twice": "{quantity:name} {first:q} ({first_at:time}) and {second:q} ({second_at:time}), "
         "both at or below {high:q}.",
     "evidence.unknown": "{quantity:name} is not known.",
+    "evidence.unknown_now":
+        "{quantity:name} near this gas is not known; that of the baseline is {value:q} ({at:time}).",
+    "evidence.unknown_then":
+        "{quantity:name} of the baseline is not known, so {value:q} ({at:time}) cannot be compared.",
     "evidence.value": "{quantity:name} {value:qt}[[ (median from {since:time} to {at:clock})]]"
         "[[!since| at {at:time}]], {relation} {limit:q}.",
     "evidence.venous": "It is a venous sample.",

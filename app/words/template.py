@@ -27,10 +27,12 @@ from app.words.shown_difference import difference_text, pressure_difference
 from core.record.channels import CHANNELS
 from core.record.instant import Instant
 from core.record.message import Value
+from core.record.units import MMHG_PER_KPA
 
 _log = logging.getLogger("luffmark")
 
 FIELD = re.compile(r"\{(\w+)(?::([^{}]*))?\}")
+_NUMBER = re.compile(r"[\d.]+")
 _OPTIONAL = re.compile(r"\[\[(.*?)\]\]", re.DOTALL)
 _WHEN_ABSENT = re.compile(r"!(\w+)\|(.*)", re.DOTALL)
 MISSING = "?"
@@ -210,7 +212,22 @@ def _as_typed(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
     typed = values.get("text")
     if values.get("quantity") == "ph" and isinstance(typed, str) and typed:
         return typed
-    return _quantity()(value, values, reader)
+    text, limit = _quantity()(value, values, reader), values.get("limit")
+    if values.get("relation") in ("above", "below") and isinstance(limit, (int, float)):
+        return _beside_limit(text, _number(value), float(limit), str(values.get("quantity", "")), reader)
+    return text
+
+
+def _beside_limit(text: str, value: float, limit: float, quantity: str, reader: Reader) -> str:
+    """A value that is rounded to the limit it is past, with the decimals that decide: 97.4 %, above 97 %."""
+    number = _NUMBER.match(text)
+    if value == limit or number is None or text != quantity_text(quantity, limit, reader):
+        return text
+    in_kpa = reader.gas_unit == "kPa" and quantity in ("paco2", "pao2", "pf", "aa")
+    shown, places = value / MMHG_PER_KPA if in_kpa else value, len(number[0].partition(".")[2])
+    finer = (formats.fixed(shown, places + more) for more in (1, 2, 3))
+    told = next((f for f in finer if float(f) != float(number[0])), number[0])
+    return told + text[number.end() :]
 
 
 def _name_from(kind: str) -> Writer:

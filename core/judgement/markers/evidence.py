@@ -50,9 +50,11 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "evidence.hours": ("what", "hours", "limit"),
         "evidence.share": ("percent", "limit", "minutes", "breaks"),
         "evidence.unknown": ("quantity",),
+        "evidence.unknown_then": ("quantity", "value", "at"),
+        "evidence.unknown_now": ("quantity", "value", "at"),
         "evidence.stale": ("at", "minutes"),
         "evidence.gas_doubt": ("doubt", "at"),
-        "evidence.not_settled": ("gas_at", "because", "missing", "ph"),
+        "evidence.not_settled": ("gas_at", "because", "missing", "ph", "from_min", "to_min"),
         "evidence.off_support": ("at",),
         "evidence.not_steady": ("minutes", "back_on_at", "at"),
         "evidence.support_ended": ("at",),
@@ -156,6 +158,15 @@ def sustained(
 def unknown(quantity: str) -> Message:
     """A value that would be needed and is not known."""
     return Message("evidence.unknown", {"quantity": quantity})
+
+
+def one_sided(quantity: str, then: tuple[float, Instant] | None, now: tuple[float, Instant] | None) -> Message:
+    """What cannot be compared: the baseline's value is not known, or that near the gas, or neither. (value, at) each."""
+    known = then if then is not None else now
+    if known is None or (then is not None and now is not None):
+        return unknown(quantity)
+    key = "evidence.unknown_now" if then is not None else "evidence.unknown_then"
+    return Message(key, {"quantity": quantity, "value": known[0], "at": known[1]})
 
 
 def drawn(gas: GasFigure) -> tuple[Message, ...]:

@@ -34,6 +34,11 @@ NEEDS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
 """What a gas must hold to answer a marker that gases judge. One without it leaves an open flag open."""
 ANY_SAMPLE: Final = frozenset({"lactate_above_2", "lactate_above_4", "lactate_rising", "venous_ph_below_severe"})
 """Markers that a venous sample answers too."""
+AT_ONE_TO_TWO_HOURS: Final = frozenset(
+    {"ph_not_better_severe", "ph_not_better", "ph_not_better_settling", "hdu_criterion"}
+)
+"""Markers that ask whether pH has risen 1-2 h after a start or a change."""
+SCORED_AT_ONE_TO_TWO_HOURS: Final = frozenset({"hacor_above_5", "hacor_updated_above_10_5"})
 _FIELDS: Final = {"ph": "ph", "paco2": "paco2_mmHg", "pao2": "pao2_mmHg", "pf": "pf_mmHg",
                   "lactate": "lactate_mmol_L"}  # fmt: skip
 
@@ -86,8 +91,27 @@ def not_settled(seen: Observed, marker: str, evidence: Iterable[Message]) -> Mes
     because = (
         "venous" if venous else "outside" if outside
         else "missing" if missing else "doubtful" if gas.in_doubt
-        else "off support" if gas.off_support else "no answer"
+        else "off support" if gas.off_support else _no_answer(seen, marker, gas)
     )  # fmt: skip
+    from_min, to_min = _hours(seen, marker, because)
     values: dict[str, Value] = {"gas_at": gas.at, "because": because,
-              "missing": ", ".join(missing) if because == "missing" else None, "ph": gas.ph}  # fmt: skip
+              "missing": ", ".join(missing) if because == "missing" else None, "ph": gas.ph,
+              "from_min": from_min, "to_min": to_min}  # fmt: skip
     return Message("evidence.not_settled", values)
+
+
+def _hours(seen: Observed, marker: str, because: str) -> tuple[float | None, float | None]:
+    """The minutes after a start or change in which a marker judges, where they are why a gas gave no answer."""
+    if because == "other hours":
+        rules = seen.policy.response
+        return rules.one_to_two_hours_from_min.value, rules.one_to_two_hours_to_min.value
+    limits = seen.policy.markers[marker].limits if because == "score hours" else {}
+    return limits.get("from_min"), limits.get("to_min")
+
+
+def _no_answer(seen: Observed, marker: str, gas: GasFigure) -> str:
+    """Why a gas that lacks nothing neither meets nor ends a flag, where one can tell: drawn too early, or outside the
+    hours after a start or change that the marker judges."""
+    if marker in AT_ONE_TO_TWO_HOURS:
+        return "early" if is_early(seen, gas) else "other hours"
+    return "score hours" if marker in SCORED_AT_ONE_TO_TWO_HOURS else "no answer"

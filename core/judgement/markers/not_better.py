@@ -130,7 +130,9 @@ def _settling(seen: Observed, c: Comparison) -> tuple[bool, tuple[Message, ...]]
     before, after = seen.vitals.rate(c.base.at, 0, max(c.base.at, c.anchor_at)), seen.rate_near(c.gas.at)
     slower = False
     if before is None or after is None or after.at <= before.at:
-        said.append(say.unknown("rr"))
+        newer = after is not None and (before is None or after.at > before.at)
+        then = None if before is None else (before.value, before.at)
+        said.append(say.one_sided("rr", then, (after.value, after.at) if after is not None and newer else None))
     else:
         noise = rr_noise(seen.policy.noise, before.device and after.device)
         said.append(say.moved("rr", before, after, noise))
@@ -142,7 +144,7 @@ def _settling(seen: Observed, c: Comparison) -> tuple[bool, tuple[Message, ...]]
         co2_lower = c.gas.paco2_mmHg < c.base.paco2_mmHg
     gcs_then, gcs_now = _gcs(seen, c.base.at), _gcs(seen, c.gas.at)
     if gcs_then is None or gcs_now is None:
-        said.append(say.unknown("gcs"))
+        said.append(say.one_sided("gcs", gcs_then, gcs_now))
     else:
         said.append(say.changed("gcs", gcs_then[0], gcs_then[1], gcs_now[0], gcs_now[1]))
     unchanged = gcs_then is not None and gcs_now is not None and gcs_now[0] >= gcs_then[0]

@@ -31,13 +31,13 @@ def spo2_deep(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     margin = rule.limits["points"]
     spo2, low, _ = seen.once(ranged)
     # at least `points` below counts: the crossing is strict, so the limit lies a hair above
-    return _out(rule, spo2, low - margin + 1e-9, spo2.v <= low - margin, below=True)
+    return _out(rule, spo2, low - margin + 1e-9, spo2.v <= low - margin, say.AT_MOST)
 
 
 def spo2_below_range(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """SpO2 below range for 15 min, or twice in a row."""
     spo2, low, _ = seen.once(ranged)
-    return _out(rule, spo2, low, spo2.v < low, below=True)
+    return _out(rule, spo2, low, spo2.v < low, say.BELOW)
 
 
 def spo2_above_range(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -63,13 +63,13 @@ def _above(seen: Observed, rule: MarkerRule, *, at_risk: bool, margin: float = 0
         return []
     counts = seen.oxygen_given(spo2.t) & (seen.at_risk(spo2.t) == at_risk)
     limit = np.where(counts, high, np.inf)
-    return _out(rule, spo2, limit, spo2.v > limit, below=False)
+    return _out(rule, spo2, limit, spo2.v > limit, say.AT_LEAST if margin else say.ABOVE)
 
 
-def _out(rule: MarkerRule, spo2: Series, limit: Values, out: Flags, *, below: bool) -> list[Spell]:
+def _out(rule: MarkerRule, spo2: Series, limit: Values, out: Flags, relation: str) -> list[Spell]:
+    """`relation`: how a value that counts stands to the limit that the evidence tells."""
     if not out.any():
         return []
-    relation = say.BELOW if below else say.ABOVE
     machine = ~spo2.spot
     found = [
         *_by_machine(rule, spo2.cut(machine), limit[machine], relation),
@@ -80,11 +80,12 @@ def _out(rule: MarkerRule, spo2: Series, limit: Values, out: Flags, *, below: bo
 
 def _by_machine(rule: MarkerRule, spo2: Series, limit: Values, relation: str) -> list[Spell]:
     n, m = int(rule.limits["minutes"]), int(rule.limits["of_minutes"])
+    below = relation in (say.BELOW, say.AT_MOST)
     spells = []
-    for s in crossings(spo2.t, spo2.v, limit, n, m, below=relation == say.BELOW):
+    for s in crossings(spo2.t, spo2.v, limit, n, m, below=below):
         i, j = np.searchsorted(spo2.t, [s.start, s.end if s.end is not None else spo2.t[-1] + 1])
         v, lim = spo2.v[i:j], limit[i:j]
-        past = v[v < lim] if relation == say.BELOW else v[v > lim]
+        past = v[v < lim] if below else v[v > lim]
         median = float(np.median(past)) if past.size else float(np.median(v))
         edge, newest = round(float(lim[-1]), 3), int(spo2.t[j - 1])
         told = say.sustained("spo2", relation, edge, s.minutes, s.start, newest, median)

@@ -83,3 +83,20 @@ def test_a_value_that_is_the_same_says_so_and_no_difference_of_nothing() -> None
     small = sentence(changed("ph", 7.24, before, 7.26, at, 0.033), Reader("UTC"))
     assert small.endswith("+0.02, within measurement error (0.033).")
     assert "beyond measurement error (0.033)" in sentence(changed("ph", 7.2, before, 7.3, at, 0.033))
+
+
+@pytest.mark.parametrize(
+    ("quantity", "value", "limit", "relation", "unit", "shown"),
+    [
+        ("spo2", 92.4, 92.0, "above", "mmHg", "92.4 %"),
+        ("spo2", 93.0, 92.0, "above", "mmHg", "93 %"),
+        ("spo2", 97.0, 97.0, "at or above", "mmHg", "97 %"),
+        ("rr", 25.04, 25.0, "above", "mmHg", "25.04/min"),
+        ("paco2", 45.4, 45.0, "above", "mmHg", "45.4 mmHg"),
+        ("pao2", 59.8, 60.0, "below", "kPa", "7.97 kPa"),
+        ("vte_per_kg", 9.51, 9.5, "above", "mmHg", "9.51"),
+    ],
+)
+def test_a_value_past_its_limit_shows_the_decimals_that_decide(quantity, value, limit, relation, unit, shown):
+    told = {"quantity": quantity, "value": value, "limit": limit, "relation": relation}
+    assert template.fill("{value:qt}", told, Reader(gas_unit=unit)) == shown

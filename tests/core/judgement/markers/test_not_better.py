@@ -7,7 +7,8 @@ Ozyilmaz, BMC Pulm Med 2014;14:19. What counts as settling is common practice, n
 
 import pytest
 
-from app.words import sentence
+from app.words import Reader, sentence
+from core.record.message import Message
 from tests.support.flag_cases import BEFORE, COPD, LUNG, START, flags, met, told
 from tests.support.log_cases import at
 
@@ -65,8 +66,13 @@ def test_what_is_not_known_keeps_it_a_concern():
     without_gcs = COPD + BEFORE.replace(" gcs 15", "") + START + "02:00 ph 7.30 paco2 66 rr 23"
     assert list(kinds(without_gcs)) == ["ph_not_better"]
     assert told("ph_not_better", without_gcs)["evidence.unknown"].values["quantity"] == "gcs"
+    only_now = told("ph_not_better", without_gcs + " gcs 14")["evidence.unknown_then"]
+    assert only_now.values == {"quantity": "gcs", "value": 14, "at": at("02:00")}
+    assert sentence(only_now, Reader()).startswith("GCS of the baseline is not known, so 14 (")
     stale_rate = BASE + "01:20 rr 20\n02:00 ph 7.30 paco2 66 gcs 15"  # the rate is 40 min old
     assert list(kinds(stale_rate)) == ["ph_not_better"]
+    only_then = told("ph_not_better", stale_rate)["evidence.unknown_now"]
+    assert only_then.values == {"quantity": "rr", "value": 30, "at": at("00:30")}
 
 
 @pytest.mark.parametrize(
@@ -224,7 +230,19 @@ def test_an_open_flag_names_the_newest_gas_though_it_does_not_settle_it():
     log = COPD + "00:30 ph 7.26 paco2 75\n" + START + "02:00 ph 7.27 paco2 74\n"
     flag = next(f for f in flags(log + "05:30 ph 7.28 paco2 64") if f.marker == "ph_not_better")
     said = {m.key: m.values for m in flag.evidence}["evidence.not_settled"]
-    assert (said["gas_at"], said["ph"], said["because"]) == (at("05:30"), 7.28, "no answer")
+    assert (said["gas_at"], said["ph"], said["because"]) == (at("05:30"), 7.28, "other hours")
+    assert (said["from_min"], said["to_min"]) == (45, 135)
+    told = sentence(Message("evidence.not_settled", said), Reader())
+    assert "pH has not risen beyond measurement error, and it was drawn outside the hours" in told
+    assert told.endswith("that the flag judges (45 min to 2 h 15 min after the start or a change).")
+
+
+def test_an_open_flag_says_that_a_gas_is_too_early_to_end_it():
+    log = COPD + "00:30 ph 7.26 paco2 75\n" + START + "02:00 ph 7.27 paco2 74\n05:00 ipap 24\n"
+    flag = next(f for f in flags(log + "05:10 ph 7.31 paco2 66") if f.marker == "ph_not_better")
+    said = next(m for m in flag.evidence if m.key == "evidence.not_settled")
+    assert (said.values["because"], said.values["from_min"]) == ("early", None)
+    assert sentence(said, Reader()).endswith("(pH 7.31): it is an early gas, so not yet steady.")
 
 
 def test_an_alkalosis_is_no_gain_and_a_normal_ph_no_loss():

@@ -7,8 +7,9 @@ criteria (PaO2 below 6 kPa). Minutes and counts of readings are common practice,
 
 import pytest
 
+from app.words import Reader, sentence
 from core.judgement.flags import evaluate
-from tests.support.flag_cases import BEFORE, COPD, LUNG, START, ctx, met, told, with_rule
+from tests.support.flag_cases import BEFORE, COPD, LUNG, START, ctx, met, spells, told, with_rule
 
 LUNG_START = START.replace("fio2 30", "fio2 50")
 LUNG_BEFORE = "00:30 ph 7.45 paco2 34 pao2 60 site arterial gas_fio2 0.4 rr 34 gcs 15\n"
@@ -212,3 +213,18 @@ def test_a_ward_can_ask_for_a_remark_outside_the_population():
     (flag,) = [f for f in evaluate(ctx(log, "02:40", rule)) if f.marker == "vt_high_hypoxaemic"]
     assert (flag.tier, flag.outside_population) == ("remark", True)
     assert flag.evidence[-1].values["population"] == "hypoxaemic, not hypercapnic"
+
+
+@pytest.mark.parametrize(
+    ("marker", "readings", "said"),
+    [
+        ("over_oxygenation_far", "02:00 spo2 98\n02:20 spo2 97", "SpO2 97 % at 27-Mar-2026 02:20, at or above 97 %."),
+        ("over_oxygenation", "02:00 spo2 94\n02:20 spo2 93", "SpO2 93 % at 27-Mar-2026 02:20, above 92 %."),
+        ("spo2_deep", "02:00 spo2 82\n02:20 spo2 83", "SpO2 83 % at 27-Mar-2026 02:20, at or below 83 %."),
+        ("spo2_below_range", "02:00 spo2 86\n02:20 spo2 87", "SpO2 87 % at 27-Mar-2026 02:20, below 88 %."),
+        ("over_oxygenation_far", "device spo2 02:00 02:20 97 97", "SpO2 at or above 97 % for 20 min in all"),
+    ],
+)
+def test_the_evidence_says_whether_its_limit_itself_counts(marker, readings, said):
+    (spell,) = spells(marker, COPD + START + readings)
+    assert sentence(spell.evidence[-1], Reader()).startswith(said)
