@@ -161,7 +161,10 @@ def unknown(quantity: str) -> Message:
 
 
 def one_sided(quantity: str, then: tuple[float, Instant] | None, now: tuple[float, Instant] | None) -> Message:
-    """What cannot be compared: the baseline's value is not known, or that near the gas, or neither. (value, at) each."""
+    """What cannot be compared: the baseline's value is not known, or that near the gas, or neither.
+
+    `then` and `now`: the value and its moment, None where it is not known.
+    """
     known = then if then is not None else now
     if known is None or (then is not None and now is not None):
         return unknown(quantity)
