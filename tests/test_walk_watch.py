@@ -8,7 +8,8 @@ from pytestqt.qtbot import QtBot
 
 from app.operations import correction, due, entry
 from app.operations.recording import Recorded
-from tests.support.open_window import make_store, open_window, settled
+from storage.store import Store
+from tests.support.open_window import NOW, make_store, open_window, settled
 from tests.support.tampered import tamper
 from tests.support.walk_watch import Watch
 
@@ -72,6 +73,14 @@ def test_a_dialog_of_a_store_that_is_gone(watched: Watched) -> None:
     form.model.close()
     form.model = model
     form.reject()
+
+
+def test_a_ward_that_lags_behind_its_store(watched: Watched) -> None:
+    assert watched.watch.behind() == ""
+    path = watched.window.model.session.store_path
+    with Store.open(path) as store:
+        entry.log_line(store, "ZZ", NOW, entry.LineRequest("bed-3", "rr 22", "UTC"))
+    assert watched.watch.behind() == "what is shown of bed-3 is not what stands in the store"
 
 
 def test_what_was_acknowledged_and_is_not_in_the_store(watched: Watched) -> None:

@@ -196,6 +196,22 @@ class Walker:
         end = time.monotonic() + PATIENCE_S
         return lambda: ready() or time.monotonic() > end
 
+    def _is_behind(self, told: list[str]) -> bool:
+        told[0] = self.watch.behind()
+        return bool(told[0])
+
+    def _every(self, ready: Callable[[], bool]) -> Callable[[], bool]:
+        """The same, asked ten times a second."""
+        asked = [0.0]
+
+        def look() -> bool:
+            if time.monotonic() < asked[0]:
+                return False
+            asked[0] = time.monotonic() + 0.1
+            return ready()
+
+        return look
+
     # the course
 
     def run(self) -> int:
@@ -262,6 +278,11 @@ class Walker:
                 continue
             yield self.is_at_rest
             self.watch.look()
+            if number % 7 == 0:
+                told = [""]
+                yield self._soon(self._every(lambda told=told: not self._is_behind(told)))
+                if told[0]:  # for all that time: what is written just now may not be shown just yet
+                    self.watch.fault(told[0])
         yield from self._ended()
 
     def _steps(self) -> Sequence[tuple[int, Callable[[Walker, Random], str]]]:

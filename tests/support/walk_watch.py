@@ -219,6 +219,21 @@ class Watch:
                         self.fault(f"acknowledged and not in the store: {recorded}")
                     self.recorded += len(recorded.ids)
 
+    def behind(self) -> str:
+        """What the ward shows that is not what the store holds by now; "" where it looks back, or all is there."""
+        o = self.window.opened if self.window is not None else None
+        if o is None or not o.feed.is_ready or not o.model.session.is_live:
+            return ""
+        path, shown = o.model.session.store_path, dict(o.feed.answers)
+        with Store.open(path, passphrase=self._secret_of(path), read_only=True) as store:
+            for key, answer in shown.items():
+                there = {s.entry for s in store.episode(key).standing} if store.has_episode(key) else set()
+                seen = {s.entry for s in answer.record.standing}
+                if there != seen:
+                    told = f"not shown: {there - seen}, shown and not there: {seen - there}"
+                    return f"what is shown of {key} is not what stands in the store, {told}"
+        return ""
+
     def look_whole(self, path: Path) -> None:
         """The store is sound."""
         with Store.open(path, passphrase=self._secret_of(path), read_only=True) as store:

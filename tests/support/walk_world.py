@@ -29,6 +29,7 @@ def move_home(folder: Path) -> None:
     homes = (f"XDG_{kind}_HOME" for kind in ("DATA", "CONFIG", "CACHE", "STATE"))
     for name in ("HOME", "LOCALAPPDATA", "APPDATA", "TMPDIR", *homes):
         os.environ[name] = str(folder)
+    os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
     os.environ["TZ"] = "Europe/London"
     tempfile.tempdir = None
 
