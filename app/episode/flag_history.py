@@ -57,7 +57,9 @@ def line_of(flag: FlagFigure, reader: Reader) -> str:
     told = [translate("flag history", "{name}, from {time}.").format(name=name, time=reader.time(flag.since))]
     told += word_lines(flag, reader)
     if flag.undone_by_correction and flag.ended_at is not None:
-        text = translate("flag history", "Taken back {time}: the record no longer bears it out.")
+        text = translate(
+            "flag history", "Taken back {time}: what was logged later or corrected no longer bears it out."
+        )
         told.append(text.format(time=reader.time(flag.ended_at)))
     elif flag.ended_at is not None:
         told.append(translate("flag history", "No longer met {time}.").format(time=reader.time(flag.ended_at)))

@@ -11,6 +11,7 @@ from app.look.theme import Tier, tier_word
 from app.operations.replay import ReplayAnswer
 from app.session.shift import shift_of
 from app.telling.finding_names import marker_name
+from app.telling.undone import undone_word
 from app.words import Reader
 from core.figures.replay import MarkerCount, ReplayedFlag
 from core.figures.replay_summary import Load, ReplayedEpisode, by_marker, by_outcome, load_of
@@ -112,7 +113,7 @@ def _merged(episode: ReplayedEpisode) -> Iterator[tuple[str, ReplayedFlag]]:
 def _ended(flag: ReplayedFlag, reader: Reader) -> str:
     if flag.ended_at is None:
         return "stands"
-    undone = " (undone by a correction)" if flag.undone else ""
+    undone = f" ({undone_word()})" if flag.undone else ""
     return wall(flag.ended_at, reader.zone) + undone
 
 
@@ -143,7 +144,7 @@ def _loads(answer: ReplayAnswer) -> str:
     heads = ("Flags", *(x.strip() or "Count" for x in _letters(n)))
     rows = [("in all", *(str(x.raised) for x in loads))]
     rows += [(_tier(t), *(str(dict(x.by_tier)[t]) for x in loads)) for t in ("escalate", "concern", "remark")]
-    rows += [("undone by a correction", *(str(x.undone) for x in loads)), ("per episode-hour", *map(_rate, loads))]
+    rows += [(undone_word(), *(str(x.undone) for x in loads)), ("per episode-hour", *map(_rate, loads))]
     return table(heads, rows)
 
 

@@ -15,6 +15,7 @@ from app.telling.finding_names import lever_name, marker_name
 from app.telling.language import in_language as tr
 from app.telling.later_words import later_sentence
 from app.telling.lever_words import asks, lever_reasons
+from app.telling.undone import undone_word
 from app.words import sentence
 from app.words.verdict_loss import with_loss
 from core.figures.shift import ShiftFigures
@@ -157,7 +158,7 @@ class EpisodeWriter(SheetWriter):
             why = f": {x.settled_why}" if x.settled_why else ""
             told = tr("since {since}, settled {moment}{by}{why}")
             return told.format(since=since, moment=self._moment(x.settled_at), by=by, why=why)
-        undone = tr(", undone by a correction") if x.undone_by_correction else ""
+        undone = f", {undone_word()}" if x.undone_by_correction else ""
         if x.ended_at is None:
             return tr("since {since}{undone}").format(since=since, undone=undone)
         told = tr("{since} to {ended}{undone}")

@@ -11,6 +11,7 @@ from app.sheet.writer import lowered, opened, state_head
 from app.telling.finding_names import due_name, marker_name
 from app.telling.language import in_language as tr
 from app.telling.phrases import channel_name
+from app.telling.undone import undone_word
 from app.words import Reader
 from app.words.figure_lines import FigureLines
 from core.figures.since_handover import FactChange, SinceHandover, Verdict
@@ -119,7 +120,7 @@ class _SinceWriter:
             return tr("{text}, settled {time}{by}").format(text=text, time=self._reader.time(f.settled_at), by=by)
         if f.ended_at is not None:
             return tr("{text}, no longer met {time}").format(text=text, time=self._reader.time(f.ended_at))
-        return tr("{text}, undone by a correction").format(text=text) if f.undone_by_correction else text
+        return f"{text}, {undone_word()}" if f.undone_by_correction else text
 
     def _done(self, done: Iterable[DueFigure]) -> Iterator[str]:
         """Each kind once, with the times at which it was done."""

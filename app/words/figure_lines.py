@@ -10,6 +10,7 @@ from app.telling.drawn import drawn_word, fio2_source
 from app.telling.gas_doubt import rivals_word
 from app.telling.presumed import presumed_word
 from app.telling.taken import taken_words
+from app.telling.undone import undone_word
 from app.words import Reader, sentence
 from app.words.arm_words import arm_words, arms_agree
 from app.words.differences import changes_of
@@ -282,7 +283,7 @@ class FigureLines:
         elif f.ended_at is not None:
             parts.append(f"{self.tr('no longer met since')} {self.reader.time(f.ended_at)}")
         if f.undone_by_correction:
-            parts.append(self.tr("undone by a correction"))
+            parts.append(undone_word())
         if f.outside_population:
             parts.append(self.tr("outside its population"))
         return "; " + ", ".join(parts) if parts else ""
