@@ -20,6 +20,7 @@ from app.words import Reader, sentence
 from core.record.channels import CHANNELS, Kind
 from core.record.entries import Action, Entry, NewEntry
 from core.record.episode import Episode
+from core.record.line_time import moment_near
 from core.record.local_time import zoned_iso
 from core.record.message import refuse
 from storage.store import Store
@@ -44,7 +45,7 @@ def run(context: Context, args: argparse.Namespace) -> int:
         if args.entry is None:
             return _list(context, record, reader, intake.origins(store, context.by, context.now(), record.key).value)
         entry_id = _whole_id(record, args.entry)
-        request = _request(args, entry_id)
+        request = _request(args, entry_id, _typed_value(context, args.value, record, entry_id))
         asked = correction.correction_questions(store, context.by, context.now(), request).value
         if asked and not args.yes and args.reason.strip():
             told = plain(" ".join(sentence(m, reader) for m in asked))
@@ -96,13 +97,26 @@ def _supersede(context: Context, store: Store, request: correction.Request) -> O
     return correction.correct(store, who, now, request)
 
 
-def _request(args: argparse.Namespace, entry_id: str) -> correction.Request:
+def _typed_value(context: Context, text: str | None, record: Episode, entry_id: str) -> str | None:
+    """The value as typed; a moment by the wall's clock as ISO 8601.
+
+    Raises:
+        RecordError: `line.time_form`, `time.*`: what is wrong with a moment.
+    """
+    old = next(s.entry for s in record.standing if s.entry.id == entry_id)
+    if not text or CHANNELS[old.channel].kind is not Kind.INSTANT or old.number is None:
+        return text
+    zone = context.local_zone()
+    return zoned_iso(moment_near(text, int(old.number), context.now(), zone), zone)
+
+
+def _request(args: argparse.Namespace, entry_id: str, value: str | None) -> correction.Request:
     more = {"confirmed": args.yes, "alone": args.only}
     if args.withdraw:
         return correction.WithdrawalRequest(args.episode, entry_id, args.reason, **more)
     if args.move_to is not None:
         return correction.MoveRequest(args.episode, entry_id, args.move_to, args.reason, **more)
-    return correction.CorrectionRequest(args.episode, entry_id, args.reason, args.value, args.unit, args.at, **more)
+    return correction.CorrectionRequest(args.episode, entry_id, args.reason, value, args.unit, args.at, **more)
 
 
 def _whole_id(record: Episode, start: str) -> str:

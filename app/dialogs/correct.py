@@ -12,7 +12,7 @@ from app.dialogs.drafted import DraftedDialog
 from app.dialogs.logged_list import LoggedList, named_value
 from app.forms.typed_time import typed_near
 from app.look.chooser import Chooser
-from app.look.formats import wall
+from app.look.formats import lately, wall
 from app.look.theme import Theme
 from app.operations import correction, intake
 from app.operations.outcome import Outcome
@@ -27,7 +27,8 @@ from core.record.entries import Action, Entry
 from core.record.episode import Episode
 from core.record.gas_together import gas_with
 from core.record.instant import Instant
-from core.record.local_time import local
+from core.record.line_time import moment_near
+from core.record.local_time import local, zoned_iso
 from core.record.message import Message, RecordError
 from core.record.units import written
 
@@ -121,7 +122,9 @@ class CorrectDialog(DraftedDialog):
         found = self._entry()
         if found is not None:
             is_mark = CHANNELS[found.channel].kind is Kind.MARK
-            self.value.setText(found.words or "" if is_mark else _editable(found))
+            self.value.setText(found.words or "" if is_mark else self._editable(found))
+            is_time = CHANNELS[found.channel].kind is Kind.INSTANT
+            self.value.setPlaceholderText(self.tr("01:30, yesterday 23:10, 27-Mar-2026 23:10") if is_time else "")
             moment = local(found.at, self._reader.zone)
             self.time.setText(f"{moment:%H:%M}")
             self.of.setCurrentIndex(0)
@@ -213,12 +216,22 @@ class CorrectDialog(DraftedDialog):
 
     def _typed(self, found: Entry) -> tuple[str | None, str]:
         text = self.value.text().strip()
-        if text == _editable(found):
+        if text == self._editable(found):
             return None, ""
+        if CHANNELS[found.channel].kind is Kind.INSTANT and found.number is not None and text:
+            near, now = int(found.number), self._model.session.now()
+            return zoned_iso(moment_near(text, near, now, self._reader.zone), self._reader.zone), ""
         if CHANNELS[found.channel].kind is Kind.NUMBER:
             value, _, unit = text.partition(" ")
             return value, unit.strip()
         return text, ""
+
+    def _editable(self, entry: Entry) -> str:
+        """What was typed, to be typed anew: a moment by the wall's clock; else the number, a space, and its unit as
+        people write it."""
+        if CHANNELS[entry.channel].kind is Kind.INSTANT and entry.number is not None:
+            return lately(int(entry.number), self._model.session.now(), self._reader.zone)
+        return f"{entry.raw} {written(entry.raw_unit)}".strip()
 
     def _at(self, found: Entry) -> Instant | None:
         """The right time, or None where it was left as it is: near the time it was logged for."""
@@ -272,8 +285,3 @@ class CorrectDialog(DraftedDialog):
             return found is not None and self._right(found) == self._sent
         except RecordError:
             return False
-
-
-def _editable(entry: Entry) -> str:
-    """What was typed, to be typed anew: the number, a space, and its unit as people write it."""
-    return f"{entry.raw} {written(entry.raw_unit)}".strip()

@@ -85,6 +85,8 @@ def value_text(entry: NewEntry, reader: Reader) -> str:
     """A value as it was typed, and what it is kept as where that reads otherwise; the text of an event."""
     if CHANNELS[entry.channel].kind is Kind.MARK:
         return entry.words or ""
+    if CHANNELS[entry.channel].kind is Kind.INSTANT and entry.number is not None:
+        return wall(int(entry.number), reader.zone)  # not as it was written: people read the wall's clock
     value = entry.number if entry.number is not None else entry.words
     return logged(entry.channel, value, entry.raw, entry.raw_unit, reader.gas_unit)
 

@@ -2,13 +2,9 @@
 
 from __future__ import annotations
 
-import re
-
 from core.record.instant import Instant
-from core.record.line_time import moment_typed
-from core.record.local_time import wall_time_near, zoned_iso
-
-_WALL = re.compile(r"(?:(first|second)\s+)?(\d{1,2}):(\d{2})", re.IGNORECASE)
+from core.record.line_time import moment_near, moment_typed
+from core.record.local_time import zoned_iso
 
 
 def typed_time(text: str, now: Instant, zone: str) -> Instant | None:
@@ -29,11 +25,7 @@ def typed_near(text: str, near: Instant, now: Instant, zone: str) -> Instant | N
     Raises:
         RecordError: as `typed_time`.
     """
-    match = _WALL.fullmatch(text.strip())
-    if match is None:
-        return typed_time(text, now, zone)
-    which, hour, minute = (match[1] or "").lower(), int(match[2]), int(match[3])
-    return wall_time_near(hour, minute, near=near, now=now, zone=zone, which=which)
+    return moment_near(text, near, now, zone) if text.strip() else None
 
 
 def typed_iso(text: str, now: Instant, zone: str) -> str:

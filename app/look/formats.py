@@ -15,14 +15,13 @@ from math import isnan
 from app.telling.language import in_language
 from core.record.channels import CHANNELS, Group, Kind
 from core.record.instant import HOUR, MINUTE, Instant
-from core.record.local_time import candidates, local
+from core.record.local_time import MONTHS, candidates, local
 from core.record.units import MMHG_PER_KPA, written
 
 MINUS = "\N{MINUS SIGN}"
 PLUS_MINUS = "\N{PLUS-MINUS SIGN}"
 NO_BREAK = "\N{NO-BREAK SPACE}"
 ABSENT = "not recorded"
-MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
 """Fixed letters, so that no computer's region turns a day into a month."""
 GAS_UNITS = ("mmHg", "kPa")
 _CHOICES = {"copd": "COPD", "ards": "ARDS", "confusion": "new confusion", "full": "full treatment"}

@@ -96,9 +96,9 @@ TEMPLATES: Final[dict[str, str]] = {
     "line.ps_means_ipap": "Pressure support {ps} over EPAP {epap:trim} is IPAP {ipap:trim} cmH2O.",
     "line.site_assumed": "No sample site is named: taken as arterial, unless this gas has one already.",
     "line.start_unseen":
-        "Nothing logged so far shows that support starts here, so its hours would not count. If it does, add "
-        "'{accepted}', if it started earlier '{accepted} 23:40'.",
-    "line.time_form": "The time '{value}' is not written as the line takes it. Accepted: {accepted}.",
+        "Nothing shows that support starts here: its hours would not count. '{accepted}' on the line, or "
+        "'{accepted} 23:40', says since when.",
+    "line.time_form": "The time '{value}' is not understood. Accepted: {accepted}.",
     "line.time_in_words": "'{time}' stays among the words; a time stands first on the line.",
     "line.time_twice": "The line has a time of its own, and another moment is given beside it. Accepted: {accepted}.",
     "line.too_long": "The line is too long. Accepted: at most {accepted}.",

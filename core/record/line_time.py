@@ -7,7 +7,7 @@ from collections.abc import Sequence
 
 from core.record import instant
 from core.record.instant import HOUR, MINUTE, Instant
-from core.record.local_time import latest_wall_time
+from core.record.local_time import dated_wall_time, latest_wall_time, wall_time_near
 from core.record.message import RecordError, refuse
 
 _WALL = r"(yesterday\s+)?(?:(first|second)\s+)?(\d{1,2}):(\d{2})(?:\s+(first|second)\b)?(?=\s|$)"
@@ -17,6 +17,10 @@ TIME_FORMS = "14:20 | yesterday 23:40 | 20m ago | 1h ago | now"
 _LIKE_A_TIME = re.compile(
     r"\d{1,2}[.h]\d{2}|\d{3,4}|\d{1,2}:\d{2}:.*|\d{4}-\d{2}.*|\d{1,2}[-./][A-Za-z]{3}.*|\d{1,2}[./]\d{1,2}[./].*",
     re.ASCII,
+)
+_BARE = re.compile(r"(?:(first|second)\s+)?(\d{1,2}):(\d{2})", re.IGNORECASE)
+_DATED = re.compile(
+    r"(\d{1,2})-([A-Za-z]{3})-(\d{4})\s+(?:(first|second)\s+)?(\d{1,2}):(\d{2})", re.ASCII | re.IGNORECASE
 )
 _DIGITS = re.compile(r"(\d{1,2})[.h]?(\d{2})", re.ASCII)
 _NO_COLON = re.compile(r"\d{3,4}", re.ASCII)
@@ -43,7 +47,8 @@ def read_time(text: str, now: Instant, zone: str) -> tuple[Instant, str, bool]:
 
 
 def moment_typed(text: str, now: Instant, zone: str) -> Instant:
-    """The moment that a text is, whole: a time of day, how long ago, now, or ISO 8601 with its offset.
+    """The moment that a text is, whole: a time of day, with a date or without, how long ago, now, or ISO 8601 with
+    its offset.
 
     Raises:
         RecordError: `line.time_form` where it is none of these; `time.*`, `instant.*`: what is wrong with it.
@@ -56,13 +61,30 @@ def moment_typed(text: str, now: Instant, zone: str) -> Instant:
         return now
     if is_time(text):
         return read_time(text, now, zone)[0]
+    if match := _DATED.fullmatch(text):
+        date = int(match[3]), match[2], int(match[1])
+        return dated_wall_time(date, int(match[5]), int(match[6]), zone=zone, which=(match[4] or "").lower())
     try:
         return instant.parse(text)
     except RecordError as error:
         if error.message.key == "instant.out_of_range":
             raise
-    accepted = meant_time(text) or f"{TIME_FORMS} | 2026-03-28T02:10+00:00"
+    accepted = meant_time(text) or f"{TIME_FORMS} | 28-Mar-2026 02:10 | 2026-03-28T02:10+00:00"
     raise refuse("line.time_form", value=text, accepted=accepted)
+
+
+def moment_near(text: str, near: Instant, now: Instant, zone: str) -> Instant:
+    """As `moment_typed`, but a bare time of day is the nearest such to a moment, on whatever day; first or second
+    01:30 tells an hour that came twice.
+
+    Raises:
+        RecordError: as `moment_typed`.
+    """
+    match = _BARE.fullmatch(text.strip())
+    if match is None:
+        return moment_typed(text, now, zone)
+    which, hour, minute = (match[1] or "").lower(), int(match[2]), int(match[3])
+    return wall_time_near(hour, minute, near=near, now=now, zone=zone, which=which)
 
 
 def is_time(text: str) -> bool:

@@ -8,6 +8,7 @@ from zoneinfo import ZoneInfo
 from core.record.instant import HOUR, MINUTE, Instant, from_datetime, to_datetime
 from core.record.message import refuse
 
+MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct", "Nov", "Dec")
 LEAD = 5 * MINUTE
 """A typed time may lead the clock by this much: clocks on a ward differ."""
 
@@ -101,6 +102,31 @@ def wall_time_near(hour: int, minute: int, *, near: Instant, now: Instant, zone:
     if not past:
         raise refuse("time.not_yet", value=shown, at=nearest[0], accepted=f"a time up to now, or: yesterday {shown}")
     return _chosen(past, which, shown)
+
+
+def dated_wall_time(day: tuple[int, str, int], hour: int, minute: int, *, zone: str, which: str = "") -> Instant:
+    """The moment at which the wall clock showed a time on a day (year, month as Mar, day of the month).
+
+    Raises:
+        RecordError: `time.unreadable`, `time.skipped`, `time.repeated` as `latest_wall_time`.
+
+    >>> from core.record.instant import iso
+    >>> iso(dated_wall_time((2026, "mar", 28), 1, 30, zone="UTC"))
+    '2026-03-28T01:30:00+00:00'
+    """
+    year, month, number = day
+    shown = f"{number:02d}-{month.title()}-{year} {hour:02d}:{minute:02d}"
+    try:
+        wall, date_ = time(hour, minute), date(year, MONTHS.index(month.title()) + 1, number)
+    except ValueError:
+        raise refuse("time.unreadable", value=shown, accepted="00:00 to 23:59, on a day as 28-Mar-2026") from None
+    found = candidates(date_, wall, zone)
+    if not found:
+        raise refuse("time.skipped", value=shown, accepted="a time the wall clock showed")
+    if len(found) > 1 and which not in ("first", "second"):
+        first, clock = shown.split()
+        raise refuse("time.repeated", value=shown, accepted=f"{first} first {clock} | {first} second {clock}")
+    return found[-1] if which == "second" else found[0]
 
 
 def check_not_future(at: Instant, now: Instant) -> None:

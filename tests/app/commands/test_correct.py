@@ -53,3 +53,17 @@ def test_another_time_is_that_of_the_whole_gas(filled: Run) -> None:
     assert filled("correct", "N4", id_of(filled, "ph", 7.33), "--withdraw", "--reason", "clotted")[1].startswith(
         "Withdrawn in N4: pH 7.33, Sample site arterial, PaCO2 57 mmHg of 27-Mar-2026 21:35"
     )
+
+
+def test_a_moment_is_corrected_by_the_walls_clock(filled: Run) -> None:
+    assert filled("log", "N4", "support started", "--at", "2026-03-27T21:20Z")[0] == DONE
+    listed = json.loads(filled("correct", "N4", "--json")[1])["entries"]
+    entry = next(e["id"] for e in listed if e["channel"] == "started_at")
+    code, said, err = filled("correct", "N4", entry, "--value", "21:35", "--reason", "misread", "--zone", "UTC")
+    assert (code, "27-Mar-2026 21:20 to 27-Mar-2026 21:35" in said) == (DONE, True), (said, err)
+    iso = ("--value", "2026-03-27T21:15:00+00:00", "--reason", "iso")
+    listed = json.loads(filled("correct", "N4", "--json")[1])["entries"]
+    entry = next(e["id"] for e in listed if e["channel"] == "started_at")
+    assert "to 27-Mar-2026 21:15" in filled("correct", "N4", entry, *iso, "--zone", "UTC")[1]
+    code, _, err = filled("correct", "N4", entry[:4], "--value", "soon", "--reason", "x")
+    assert code == REFUSED

@@ -5,6 +5,7 @@ from PySide6.QtWidgets import QComboBox
 
 from app.dialogs.correct import Act, CorrectDialog, Of
 from app.operations import entry
+from core.record.instant import parse
 from storage.store import Store
 from tests.support.open_window import NOW, dialog_of, settled, until
 
@@ -245,3 +246,21 @@ def test_values_stand_as_typed_with_units_as_people_write_them_and_the_kept_valu
     dialog.reason.setText("read wrong")
     dialog.go.click()
     until(qtbot, lambda: window.feed.answers["bed-7"].record.latest("temp") == 37.4)
+
+
+def test_a_moment_is_shown_and_taken_by_the_walls_clock(qtbot, window):
+    with Store.open(window.model.session.store_path) as store:
+        entry.log_line(store, "AB", NOW, entry.LineRequest("bed-7", "support started 23:50", "Europe/London"))
+    window.model.look_for_changes()
+    until(qtbot, lambda: window.feed.answers["bed-7"].record.latest("started_at") is not None)
+    dialog = open_correct(qtbot, window)
+    choose(dialog, "Support started", "27-Mar-2026 23:50")
+    assert dialog.value.text() == "23:50"
+    dialog.reason.setText("misread")
+    dialog.value.setText("half one")
+    dialog.go.click()
+    assert "14:20" in dialog.wrong.text()
+    dialog.value.setText("yesterday 23:55")
+    dialog.go.click()
+    right = parse("2026-03-27T23:55:00+00:00")
+    until(qtbot, lambda: window.feed.answers["bed-7"].record.latest("started_at") == right)
