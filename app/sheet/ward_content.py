@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 from app.look import formats
+from app.look.theme import verdict_of, verdict_word
 from app.sheet.due_lines import due_short, gases_due, others_due, skin_line
 from app.sheet.shapes import WardPage, WardRow
 from app.sheet.since_lines import compared_with
@@ -18,14 +20,17 @@ from app.sheet.writer import (
     state_head,
     strength,
 )
+from app.telling.gas_doubt import rests_on_doubt
 from app.telling.headline import headline
 from app.telling.language import in_language as tr
 from app.telling.presumed import silent_word
 from app.ward.ordering import GAS
 from app.words import sentence
+from app.words.differences import changes_of
 from core.figures.shift import ShiftFigures
 from core.judgement.response_shapes import ResponseFigure
 from core.judgement.shapes import EpisodeFigures, FlagFigure
+from core.record.instant import Instant
 
 
 class WardWriter(SheetWriter):
@@ -118,7 +123,25 @@ class WardWriter(SheetWriter):
             text += self._lost_later(f, r)
         if waiting is not None:
             text += tr(" Change of {moment}: response not yet known.").format(moment=self._moment(waiting.anchor_at))
-        return text.strip() or tr("No response judged yet.")
+        summed = self._since_start(f, judged[-1].headline_gas_at if judged else None)
+        waits = text.strip() or tr("No response judged yet.")
+        return f"{waits} {summed}" if summed else waits
+
+    def _since_start(self, f: EpisodeFigures, told: Instant | None) -> str:
+        """What the newest gas says against the start, where it is newer than the gas of the verdict that is told: a
+        change without a baseline hides neither a drift nor that nothing has changed."""
+        compared = [g for r in f.responses for g in r.gases if g.since_start.verdict is not None]
+        newest = max(compared, key=lambda g: g.at, default=None)
+        if newest is None or (told is not None and newest.at <= told):
+            return ""
+        since = newest.since_start
+        against = replace(newest, delta_ph=since.delta_ph, delta_paco2_mmHg=since.delta_paco2_mmHg,
+                          delta_pf_mmHg=since.delta_pf_mmHg)  # fmt: skip
+        by = ", ".join(changes_of(against, self._reader))
+        doubt = any(g.at == newest.at and rests_on_doubt(g) for g in f.gases)
+        word = verdict_word(verdict_of(str(since.verdict))) + (tr(" (doubtful value)") if doubt else "")
+        said = tr("Since the start {verdict}: {by} (gas of {moment}).")
+        return said.format(verdict=word, by=by, moment=self._moment(newest.at))
 
     def _lost_later(self, f: EpisodeFigures, told: ResponseFigure) -> str:
         """What a newer gas than that of the verdict has lost."""

@@ -99,6 +99,23 @@ def test_a_gas_off_support_is_the_gas_and_not_the_patient(tmp_path: Path) -> Non
     assert page.standing.startswith("Acidotic, last gas drawn while the mask was off: pH 7.31")
 
 
+def test_a_change_without_a_baseline_does_not_hide_what_the_gas_says_against_the_start(tmp_path: Path) -> None:
+    found, _ = one(
+        tmp_path, "00:05 ph 7.21 paco2 74 site arterial", "00:15 bpap-st 20/6 40", "01:15 22/6",
+        "02:05 ph 7.19 paco2 75 site arterial",
+    )  # fmt: skip
+    (bed,) = found.ward.rows
+    assert bed.response.startswith("No response judged yet. Since the start no clear change: pH ")
+    assert bed.response.endswith("(gas of 02:05).")
+    assert "-0.02" in bed.response.replace("\N{MINUS SIGN}", "-")
+
+
+def test_what_the_verdict_of_the_start_says_is_not_said_twice(tmp_path: Path) -> None:
+    lines = ("00:05 ph 7.21 paco2 74 site arterial", "00:15 bpap-st 20/6 40", "01:05 ph 7.28 paco2 66 site arterial")
+    (bed,) = one(tmp_path, *lines)[0].ward.rows
+    assert "Since the start" not in bed.response, "it is the verdict"
+
+
 def test_oxygen_that_fails_comes_first(content: SheetContent) -> None:
     assert row(content, "Bay A 1").state.startswith("Hypoxaemic: P/F 107 mmHg; not acidotic: pH 7.40")
     page = next(p for p in content.episodes if p.label == "Bay A 1")
