@@ -372,21 +372,24 @@ class _Facts:
                 yield Fact(
                     self.theme,
                     translate("side", SCORE_NAMES.get(key, key)),
-                    tuple(self._score_lines(score)),
+                    tuple(self._score_lines(score, is_class=is_class)),
                     explanation=self.explainer.score(key, full, self.f.as_of),
                     quiet=True,
                     value=value,
                     value_below=is_class or len(value) > LONG_VALUE,
                 )
 
-    def _score_lines(self, score: ScoreFigure) -> Iterator[str]:
+    def _score_lines(self, score: ScoreFigure, *, is_class: bool) -> Iterator[str]:
         if score.missing:
             names = ", ".join(input_name(m, self.reader) for m in score.missing)
             yield translate("side", "missing: {names}").format(names=names)
             yield from why_missing(score, self.reader)
-        if score.population == "outside":
+        caveat = score.caveat
+        if score.population == "outside" and not (caveat is not None and caveat.key.startswith("population.")):
             yield translate("side", "outside its population")
         if score.at is not None:
             yield f"{self.reader.time(score.at)}, {since(score.at, self.f.as_of)}"
-        said = (m for m in score.reasons.values() if not (score.missing and m.key == "score.inputs_missing"))
-        yield from (sentence(m, self.reader) for m in said)
+        said = [m for m in score.reasons.values() if not (score.missing and m.key == "score.inputs_missing")]
+        if caveat is not None and not is_class and caveat not in said:  # of a class the caveat is the value
+            said.append(caveat)
+        yield from (opened(sentence(m, self.reader)) for m in said)

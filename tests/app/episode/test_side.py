@@ -130,3 +130,22 @@ def test_the_column_grows_with_the_page_within_bounds(qtbot):
     assert usual < column.width() < 430
     column.fit_page(3840)
     assert column.width() == 430
+
+
+def score_lines(qtbot, figures: EpisodeFigures, name: str) -> list[str]:
+    column = SideColumn(LIGHT)
+    qtbot.addWidget(column)
+    column.show_figures(figures, shipped_policy(), reader_at("Europe/London", "mmHg", figures.as_of))
+    texts = [[plain(label.text()) for label in f.findChildren(QLabel)] for f in column.facts()]
+    return next(t for t in texts if t[0].startswith(name))
+
+
+def test_a_news2_by_scale_1_under_a_range_for_risk_says_so_on_its_card(qtbot):
+    lines = " ".join(score_lines(qtbot, bed("Bed 4"), "NEWS2"))
+    assert "SpO2 scale 1 (the target is 88-92 %: scale 2 needs a clinician's record)" in lines
+
+
+def test_a_score_outside_its_population_says_why_and_once(qtbot):
+    lines = " ".join(score_lines(qtbot, bed("Bed 4"), "HACOR"))
+    assert lines.count("outside its population") == 1
+    assert "acute hypercapnia" in lines
