@@ -147,7 +147,7 @@ class Walker:
         model = self.window.model
         if model is None or not model.session.store_path.exists():
             return
-        path = model.session.store_path
+        path = self.files.as_others_name_it(model.session.store_path)
         try:
             with Store.open(path, passphrase=self.files.secret_of(path)) as store:
                 work(store, self.clock)

@@ -46,6 +46,7 @@ class Files:
     def __init__(self, folder: Path) -> None:
         self.folder = folder
         (folder / "out").mkdir()
+        (folder / "way").symlink_to(folder)
         self.plain = make_store(folder / "ward.luffmark")
         self.other = _cots(folder / "cots.luffmark", None)
         self.secret = _cots(folder / "secret.luffmark", SECRET)
@@ -69,7 +70,11 @@ class Files:
 
     def secret_of(self, path: Path) -> str | None:
         """What opens a store as another connection."""
-        return SECRET if path == self.secret else None
+        return SECRET if path.name == self.secret.name else None
+
+    def as_others_name_it(self, path: Path) -> Path:
+        """The same file by another way: what this program keeps of a store it opened is not the other program's."""
+        return self.folder / "way" / path.name if path.parent == self.folder else path
 
 
 def _cots(path: Path, secret: str | None) -> Path:
@@ -185,10 +190,10 @@ def others_hold(walker: Walker, chance: Random) -> str:
 
 Step = Callable[["Walker", Random], str]
 ALONE: Final[tuple[tuple[int, Step], ...]] = (
-    (3, opens_store), (1, leaves_store), (3, takes_in), (2, others_begin), (1, others_hold), (1, others_care),
+    (3, opens_store), (1, opens_sample), (1, leaves_store), (3, takes_in), (2, others_begin), (1, others_hold), (1, others_care),
 )  # fmt: skip
 IN_DIALOG: Final[tuple[tuple[int, Step], ...]] = (
     (1, leaves_store), (2, others_begin), (1, others_hold), (1, others_care),
 )  # fmt: skip
 LOCKED: Final[tuple[tuple[int, Step], ...]] = ((1, opens_store), (1, leaves_store), (1, others_begin))
-NO_STORE: Final[tuple[tuple[int, Step], ...]] = ((12, opens_store), (1, leaves_store))
+NO_STORE: Final[tuple[tuple[int, Step], ...]] = ((12, opens_store), (3, opens_sample), (1, leaves_store))
