@@ -22,6 +22,7 @@ from app.ward.lane_words import anchor_name
 from core.judgement.response_shapes import ResponseFigure
 from core.record.channels import Group, by_group
 from core.record.instant import HOUR, MINUTE, Instant
+from core.record.settings import Settings
 
 RIBBON_HIGH = 25.0
 LONG = 36 * HOUR
@@ -145,7 +146,7 @@ def _ribbon(on: EpisodeOnScreen) -> RibbonSpec:
                 "" if v.is_off else _fio2(v),
                 known(v.fio2),
                 s.doubtful,
-                _without_pressure(v.mode, v.is_off),
+                _unsaid(v),
                 s,
             )
         )
@@ -166,10 +167,16 @@ def _fio2(settings: object) -> str:
     return f"FiO2 {oxygen_word(settings)}" if known(settings.fio2) else oxygen_word(settings)  # type: ignore[attr-defined, arg-type]
 
 
-def _without_pressure(mode: str | None, off: bool) -> str:
-    if off:
+def _unsaid(v: Settings) -> str:
+    """What stands over a stretch: that it is off, its mode, or what of both was not recorded."""
+    if v.is_off:
         return translate("stack", "off")
-    return mode or translate("stack", "pressure not recorded")
+    if v.mode:
+        return v.mode
+    if known(v.low_pressure):
+        return translate("stack", "mode not recorded")
+    missing = translate("stack", "EPAP not recorded"), translate("stack", "pressure not recorded")
+    return missing[0] if known(v.ipap) else missing[1]
 
 
 def _events(on: EpisodeOnScreen) -> Iterator[Tick]:

@@ -1,5 +1,7 @@
 """An episode's stack says what its figures say."""
 
+import pytest
+
 from app.chart.shapes import Drawn
 from app.episode.feed import shipped_titles
 from app.episode.on_screen import EpisodeOnScreen
@@ -8,6 +10,8 @@ from app.episode.stack_words import stack_of
 from app.look.theme import GasState, Verdict
 from app.telling.support_course import course_of
 from core.judgement.policy import shipped_policy
+from core.judgement.shapes import EpisodeFigures
+from tests.support.invented_record import Bed, record_of
 from tests.support.invented_ward import NOW, at, ended, failing, leaking, on_cpap, ward
 
 
@@ -27,6 +31,24 @@ def test_ribbon_panels_brackets_and_events():
     assert spec.panels[1].brackets == ()
     assert [t.word for t in spec.events] == ["Mask off", "Mask on"]
     assert spec.now == NOW
+
+
+@pytest.mark.parametrize(
+    ("logged", "epap", "word"),
+    [
+        ({"ipap": "20", "epap": "5"}, 5, "mode not recorded"),  # its pressures are drawn beside it
+        ({"cpap": "8"}, 8, "mode not recorded"),
+        ({"ipap": "20"}, None, "EPAP not recorded"),
+        ({"fio2": "0.28"}, None, "pressure not recorded"),
+        ({"mode": "BPAP-ST", "ipap": "20", "epap": "5"}, 5, "BPAP-ST"),
+        ({"mode": "off"}, None, "off"),
+    ],
+)
+def test_what_stands_over_a_stretch_denies_nothing_that_is_drawn(logged, epap, word):
+    record = record_of("E", [("02:00", {"label": "Bed 1"}), ("02:30", logged)])
+    figures = EpisodeFigures("E", NOW, "Bed 1", "UTC")
+    spec = stack_of(shown(Bed(record, figures)), NOW)
+    assert [(s.epap, s.word) for s in spec.ribbon.steps] == [(epap, word)]
 
 
 def test_an_open_window_reaches_past_now():
