@@ -2,7 +2,7 @@
 
 from tests.support.random_walk import retold, walk
 
-SEED, STEPS = 4, 60
+SEED, STEPS = 5, 60
 
 
 def test_a_short_random_walk_ends_well() -> None:

@@ -190,7 +190,8 @@ def others_hold(walker: Walker, chance: Random) -> str:
 
 Step = Callable[["Walker", Random], str]
 ALONE: Final[tuple[tuple[int, Step], ...]] = (
-    (3, opens_store), (1, opens_sample), (1, leaves_store), (3, takes_in), (2, others_begin), (1, others_hold), (1, others_care),
+    (3, opens_store), (1, opens_sample), (1, leaves_store), (3, takes_in), (2, others_begin),
+    (1, others_hold), (1, others_care),
 )  # fmt: skip
 IN_DIALOG: Final[tuple[tuple[int, Step], ...]] = (
     (1, leaves_store), (2, others_begin), (1, others_hold), (1, others_care),
