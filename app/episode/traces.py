@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Final
 
 import numpy as np
@@ -11,6 +11,7 @@ import numpy as np
 from app.chart.shapes import Drawn, Look, Span, Trace
 from app.telling.phrases import computed_name, translate
 from app.telling.support_course import Course
+from app.words import Reader, sentence
 from core.judgement.shapes import EpisodeFigures, GasFigure
 from core.record.channels import CHANNELS, Group
 from core.record.episode import Episode, Series
@@ -65,6 +66,7 @@ class TraceMaker:
     course: Course
     gas_unit: str
     doubt_leak_above: float
+    reader: Reader = field(default_factory=Reader)
 
     def traces(self, channel: str, ink: int) -> tuple[Trace, ...]:
         """Every trace of a channel, in one ink; none where there is nothing to draw."""
@@ -127,9 +129,18 @@ class TraceMaker:
             )
         if len(spots):
             told = translate("traces", "{name}, spot").format(name=name) if len(machine) else name
+            doubts = self._typed_doubts(channel)
+            looks = self._looks(spots)
+            in_doubt = np.isin(spots.t, np.array([d.start for d in doubts], np.int64)) & (looks == Look.FRESH)
+            looks[in_doubt] = Look.DOUBTFUL
             yield self._trace(
-                channel, f"{channel}.spots", told, spots.t, spots.v, Drawn.SPOTS, ink, self._looks(spots)
+                channel, f"{channel}.spots", told, spots.t, spots.v, Drawn.SPOTS, ink, looks, doubts=doubts
             )
+
+    def _typed_doubts(self, channel: str) -> tuple[Span, ...]:
+        """Readings that people typed and that the figures leave out or doubt: each is its moment alone."""
+        told = (d for d in self.figures.ventilation.typed_doubts if d.channel == channel)
+        return tuple(Span(d.at, d.at + 1, sentence(d.why, self.reader)) for d in told)
 
     def _gas_values(self, channel: str, ink: int) -> Iterator[Trace]:
         series = self.record.number(channel).until(self.course.until)
@@ -211,6 +222,10 @@ class TraceMaker:
         spans = [Span(a, b, word) for a, b in runs_above(leak.t, leak.v, self.doubt_leak_above)]
         off = translate("traces", "mask off")
         spans += [Span(b.start, b.end or self.course.until, off) for b in self.course.breaks]
+        if self.figures.leak.definition is None:  # the figures call every volume doubtful then
+            measured = self.record.number(channel).until(self.course.until).machine.t
+            unknown = translate("traces", "leak not known")
+            spans += [Span(int(measured[0]), int(measured[-1]) + 1, unknown)] if len(measured) else []
         return tuple(sorted(spans, key=lambda s: s.start))
 
 

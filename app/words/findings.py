@@ -120,6 +120,8 @@ TRENDS: Final[dict[str, str]] = {
         "Leak was over its limit in {over} of {of} readings, typed now and then: whether for {n} of {m} min, as its "
         "flag asks, is not known.",
     "leak.meaning_changed": "what the device calls leak changed at {at:time}: only what came after counts",
+    "device.off_mask": "logged while the mask was off: not judged",
+    "leak.off_mask": "leak was logged only while the mask was off (newest at {at:time}): not judged",
     "leak.no_values": "no leak values",
     "leak.typed_now_and_then": "readings typed now and then have no minutes",
     "leak.pressure_not_known": "the port's own leak is not known without pressures",
@@ -227,6 +229,8 @@ DERIVED: Final[dict[str, str]] = {
     "oxygenation.off_support": "off support at that time",
     "ventilation.no_gas_on_support": "no gas with a PCO2 on support",
     "ventilation.no_rate": "respiratory rate not known at that time",
+    "ventilation.tidal_volume_off_mask":
+        "tidal volume was logged only while the mask was off (newest at {at:time}): not judged",
     "ventilation.no_tidal_volume": "no tidal volume measured",
     "ventilation.no_wished_paco2": "the usual PaCO2 is not recorded",
 }  # fmt: skip

@@ -83,6 +83,15 @@ class OxygenationFigure:
 
 
 @dataclass(frozen=True, slots=True)
+class TypedDoubt:
+    """A reading of the device that a person typed and that is not judged, or is in doubt, with why."""
+
+    channel: str
+    at: Instant
+    why: Message
+
+
+@dataclass(frozen=True, slots=True)
 class VentilationFigure:
     """Breathing on support. The doubt of a tidal volume travels with every figure made from it."""
 
@@ -97,3 +106,5 @@ class VentilationFigure:
     ventilatory_ratio: DerivedFigure = DerivedFigure("ventilatory_ratio")
     minute_ventilation_for_usual_L_per_min: DerivedFigure = DerivedFigure("minute_ventilation_for_paco2")
     """For the logged usual PaCO2; for another wish see `core.judgement.ventilation_findings.needed_for`."""
+    typed_doubts: tuple[TypedDoubt, ...] = ()
+    """Which readings of the device that people typed are left out or in doubt."""

@@ -67,6 +67,10 @@ def leak_figure(ctx: Context, since: Instant | None = None) -> LeakFigure:
     start = max(wanted, meaning.start)
     near = series.between(start, ctx.as_of)
     worn = near.cut(~in_any(near.t, (*ctx.support.off_times, *suspected)) & np.isfinite(near.v))
+    if not len(worn) and len(near) and in_any(near.t, ctx.support.off_times).all():
+        why = Message("leak.off_mask", {"at": int(near.t[-1])})
+        without = ("median_L_per_min", "slope_L_per_min_per_h", "limit_L_per_min", "minutes_over_limit")
+        return LeakFigure(definition=meaning.definition, reasons=dict.fromkeys(without, why))
     figure = _level(worn, slope_figure(ctx, points_of(ctx, worn), {}), meaning.definition)
     figure = _with_newest(figure, worn, int(ctx.policy.trend.device_median_min.value * MINUTE))
     counted = (int(worn.t[0]), ctx.as_of) if len(worn) else None

@@ -13,9 +13,11 @@ from core.judgement.context import Context
 from core.judgement.delivered_ventilation import DEAD_SPACE_ML, DEAD_SPACE_PER_KG
 from core.judgement.derived import DerivedFigure, FigureInput, VentilationFigure, derive
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
+from core.judgement.probable_breaks import in_any
 from core.judgement.score_inputs import Walls, rate_at
 from core.judgement.shapes import GasFigure
 from core.judgement.tidal_volume import Measured, measured_at, newest
+from core.judgement.typed_doubts import typed_doubts
 from core.physiology import ventilation
 from core.record.instant import Instant
 from core.record.message import Message
@@ -31,6 +33,8 @@ class _Breathing:
     rate: FigureInput
     volume: Measured | None
     minute: Measured | None
+    no_volume: Message
+    """Why there is no tidal volume, where there is none."""
 
     @property
     def doubt(self) -> Message | None:
@@ -64,6 +68,7 @@ def ventilation_figure(ctx: Context, walls: Walls) -> VentilationFigure:
         ventilatory_ratio=_of_minute(
             "ventilatory_ratio", ventilation.ventilatory_ratio, at_gas, {"paco2": paco2, "pbw": _given(pbw)}
         ),
+        typed_doubts=typed_doubts(ctx),
     )
     usual = ctx.episode.number("usual_paco2")
     if not len(usual):
@@ -103,23 +108,29 @@ def _gas(ctx: Context) -> GasFigure | None:
 
 def _breathing(ctx: Context, at: Instant | None, walls: Walls) -> _Breathing:
     if at is None:
-        return _Breathing(None, FigureInput(), None, None)
+        return _Breathing(None, FigureInput(), None, None, _no_volume(ctx))
     found = rate_at(ctx, at, walls)
     rate = found.given
     volume = measured_at(ctx, "vte", at, walls)
     code = volume.code if volume is not None else None
-    return _Breathing(at, rate, volume, measured_at(ctx, "mv", at, walls, rate=found.number, code=code))
+    minute = measured_at(ctx, "mv", at, walls, rate=found.number, code=code)
+    return _Breathing(at, rate, volume, minute, _no_volume(ctx))
+
+
+def _no_volume(ctx: Context) -> Message:
+    """That none was measured, or only with the mask off: a reading that stands on the screen is not denied."""
+    volumes = ctx.episode.number("vte")
+    if not len(volumes) or not in_any(volumes.t, ctx.support.off_times).all():
+        return Message("ventilation.no_tidal_volume")
+    return Message("ventilation.tidal_volume_off_mask", {"at": int(volumes.t[-1])})
 
 
 def _tidal_volume(b: _Breathing) -> DerivedFigure:
     caveats = ventilation.CAVEATS["tidal_volume_per_kg"]
     if b.volume is None:
-        return DerivedFigure("tidal_volume", caveats=caveats, reason=_NO_VOLUME)
+        return DerivedFigure("tidal_volume", caveats=caveats, reason=b.no_volume)
     value = b.volume.value
     return DerivedFigure("tidal_volume", value.value, value.at, {"vte": value}, b.volume.doubt, caveats)
-
-
-_NO_VOLUME = Message("ventilation.no_tidal_volume")
 
 
 def _of_volume(
@@ -127,7 +138,7 @@ def _of_volume(
 ) -> DerivedFigure:
     caveats = _caveats(formula)
     if b.volume is None:
-        return DerivedFigure(key, caveats=caveats, reason=_NO_VOLUME)
+        return DerivedFigure(key, caveats=caveats, reason=b.no_volume)
     inputs = {"vte": b.volume.value, **others}
     return derive(key, formula, inputs, b.volume.value.at, doubt=b.volume.doubt, caveats=caveats)
 

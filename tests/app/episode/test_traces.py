@@ -8,12 +8,16 @@ import pytest
 from app.chart.shapes import Drawn, Look
 from app.episode.traces import TraceMaker, runs_above, shown_as
 from app.telling.support_course import course_of
+from core.figures.episode_figures import episode_figures
+from core.judgement.policy import shipped_policy
 from core.record.entries import Action, recorded
 from core.record.episode import build_episode
 from core.record.instant import MINUTE
 from core.record.knowledge import standing
 from core.record.message import Message
 from tests.support.invented_ward import NOW, at, failing, leaking
+from tests.support.log_cases import at as moment
+from tests.support.log_cases import episode
 
 
 def maker(bed=None, gas_unit="mmHg", record=None):
@@ -28,6 +32,22 @@ def test_device_values_are_a_line_and_hand_values_spots():
     assert line.t.size == (NOW - at("21:05")) // MINUTE
     assert spots.v.tolist() == [87, 89, 88, 88, 86]
     assert line.gap == 5 * MINUTE
+
+
+def test_a_typed_reading_that_no_figure_takes_looks_so_and_says_why():
+    """Typed with the mask off, or a volume whose leak is not known: the line over the charts and the figures agree."""
+    log = "00:30 rr 20\n01:00 mode BPAP-ST ipap 20 epap 5\n01:30 vte 500\n02:10 mask_off\n02:16 vte 420 leak 22"
+    record = episode(log)
+    f = episode_figures(record, moment("03:00"), shipped_policy())
+    made = TraceMaker(record, f, course_of(record, moment("03:00")), "mmHg", 30.0)
+    (volume,), (leak,) = made.traces("vte", 0), made.traces("leak", 0)
+    assert [s.word for s in volume.doubts] == [
+        "tidal volume doubtful: leak not known", "logged while the mask was off: not judged",
+    ]  # fmt: skip
+    assert volume.looks.tolist() == [Look.DOUBTFUL, Look.DOUBTFUL]
+    assert [(s.start, s.word) for s in leak.doubts] == [
+        (moment("02:16"), "logged while the mask was off: not judged")
+    ]
 
 
 def test_gas_pressures_follow_the_unit():

@@ -180,6 +180,9 @@ def test_what_is_not_known_has_its_reason():
     bare = figures("00:50 rr 30\n01:00 mode bpap-st ipap 16 epap 6\n")
     for f in fields(bare):
         figure = getattr(bare, f.name)
+        if f.name == "typed_doubts":
+            assert figure == ()
+            continue
         assert figure.key in CATALOGUE
         assert figure.value is None
         assert figure.reason is not None
