@@ -133,6 +133,9 @@ def _about_files(intake: argparse.ArgumentParser) -> None:
     intake.add_argument("--patient", action="append", type=pair, default=[], metavar="ID=E",
                         help="the episode of one identifier of a file of results, or of one name in the "
                         "column of episodes of a table; may be repeated")  # fmt: skip
+    intake.add_argument("--code", action="append", type=code, default=[], metavar="CODE=CHANNEL",
+                        help="what a sender's own code measures (none: not wanted), kept for every later file; "
+                        "may be repeated (see: luffmark channels)")  # fmt: skip
     intake.add_argument("--mapping", default="", metavar="NAME", help="how a table is read (see: luffmark mapping)")
     intake.add_argument("--leak", default="", metavar="WHAT", help="what leak means: unintentional, total, not known")
     intake.add_argument("--clock-shift", type=float, default=0.0, metavar="S",
@@ -163,6 +166,18 @@ def pair(text: str) -> tuple[str, str]:
     if not (identifier and mark and episode):
         raise argparse.ArgumentTypeError(f"'{text}' is no pair. Accepted: IDENTIFIER=EPISODE")
     return identifier, episode
+
+
+def code(text: str) -> tuple[str, str]:
+    """A sender's own code and its channel, "" where it is not wanted.
+
+    >>> code("L|GLU=none"), code("3150-6=gas_fio2")
+    (('L|GLU', ''), ('3150-6', 'gas_fio2'))
+    """
+    key, mark, channel = text.rpartition("=")
+    if not (key and mark and channel):
+        raise argparse.ArgumentTypeError(f"'{text}' is no code. Accepted: CODE=CHANNEL, or CODE=none")
+    return key, "" if channel.casefold() == "none" else channel
 
 
 def _printing(command: Command) -> None:
@@ -226,6 +241,8 @@ def _files(command: Command) -> None:
                         help="without labels, texts, names and true dates; says what remains")  # fmt: skip
     taken = command("taken", "the files that were taken in; withdraw one whole")
     taken.add_argument("--withdraw", default="", metavar="ID", help="withdraw all that this file brought")
+    channels = command("channels", "the channels that a line, a file or a mapping may name, with units and limits")
+    channels.add_argument("word", nargs="?", default="", help="only those whose key, name or choices hold it")
     mapping = command("mapping", "how tables are read: propose for a file, put, list, show, forget")
     mapping.add_argument("what", choices=("list", "show", "propose", "put", "forget"))
     mapping.add_argument("subject", nargs="?", help="a file (propose, put) or a name (show, forget)")

@@ -129,7 +129,9 @@ def _whole_id(record: Episode, start: str) -> str:
     if len(found) > 1:
         raise refuse("correction.many_entries", entry=start, count=len(found), accepted="more letters of the id")
     if not found:
-        raise refuse("correction.unknown_entry", entry=start, accepted=f"luffmark correct {record.key} lists them")
+        raise refuse(
+            "correction.unknown_entry", entry=start, accepted=f"an id that 'luffmark correct {record.key}' lists"
+        )
     return found[0]
 
 

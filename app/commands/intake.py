@@ -12,8 +12,10 @@ from typing import TYPE_CHECKING, Any
 from app.commands.context import Context
 from app.look.formats import counted, plain, some_of
 from app.operations import intake as operations
+from app.operations.mapping import keep_codes
 from app.operations.outcome import watched
 from app.words import Reader, sentence
+from core.record.channels import channel
 from core.record.message import RecordError
 from storage.intake.writing import Writing, check_writing, delimiter_said
 
@@ -22,6 +24,7 @@ if TYPE_CHECKING:
     from storage.store import Store
 
 _DOUBTS_SHOWN = 20
+_CODES_SHOWN = 6
 _HINTS = {
     "patient.unknown": "Say whose results these are: luffmark intake --patient '{value}=EPISODE' {path}",
     "table.names_a_bed": "Say whose values these are: luffmark intake --patient '{value}=EPISODE' {path}",
@@ -37,7 +40,10 @@ def run(context: Context, args: argparse.Namespace) -> int:
     _check_there(args.files)
     reader = context.reader()
     taken: list[dict[str, Any]] = []
+    codes = {key: name and channel(name).key for key, name in args.code}
     with context.open_or_create(imported=args.keep_recording_times) as store:
+        if codes:
+            keep_codes(store, context.by, context.now(), codes)
         for path in args.files:
             request = _request(context, path, args)
             made = _read_and_take(context, store, request, reader, leave_out=args.leave_out_refused)
@@ -141,6 +147,7 @@ def _take(
     if made.aside:
         text += f"\n  {made.aside} value(s) left aside:"
         text += "".join(f"\n    {_row(r, reader)}" for r in intake.aside[:_DOUBTS_SHOWN])
+        text += _what_codes_are(intake, path)
     return {
         "text": text, "file": str(path), "entries": made.entries, "samples": made.samples,
         "repeated": made.repeated, "overlaid": made.overlaid, "episodes": list(made.episodes),
@@ -148,8 +155,17 @@ def _take(
         "doubts": [_row_json(d, reader) for d in intake.doubts],
         "left_out": [_row_json(r, reader) for r in intake.refusals],
         "aside": [_row_json(r, reader) for r in intake.aside],
-        "source": made.source_id,
+        "unknown_codes": [c.key for c in intake.unknown_codes], "source": made.source_id,
     }  # fmt: skip
+
+
+def _what_codes_are(intake: Intake, path: Path) -> str:
+    """How to say what the codes are that nobody has said yet: it is kept, and the file read again brings them."""
+    said = " ".join(f"--code '{plain(c.key)}=CHANNEL'" for c in intake.unknown_codes[:_CODES_SHOWN])
+    if not said:
+        return ""
+    return (f"\n  Say what a code measures, once: luffmark intake {said} {path}"
+            "\n  ('luffmark channels' lists the channels; CODE=none: not wanted)")  # fmt: skip
 
 
 def _tell_refused(path: Path, intake: Intake, reader: Reader) -> None:

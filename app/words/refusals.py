@@ -4,14 +4,14 @@ from typing import Final
 
 TEMPLATES: Final[dict[str, str]] = {
     "batch.empty": "There is nothing to record.",
-    "channel.unknown": "'{channel}' is no channel. Accepted: {accepted}.",
+    "channel.unknown": "'{channel}' is no channel. Accepted: {accepted} ('luffmark channels' lists all).",
     "correction.half_gas":
         "{channel:name} is one value of the gas of {at:time}: {left:list} would be left without it. Only this value?",
     "correction.many_entries": "{count} entries begin with '{entry}'. Accepted: {accepted}.",
     "correction.no_reason": "A correction needs its reason: {accepted}.",
     "correction.same_episode": "The entry is in {episode} already. Name {accepted}.",
     "correction.superseded": "This {channel:name} has been superseded meanwhile. Correct {accepted}.",
-    "correction.unknown_entry": "Entry {entry} is not one that can be corrected here. Name {accepted}.",
+    "correction.unknown_entry": "Entry {entry} is not one that can be corrected here. Accepted: {accepted}.",
     "device.into_the_future": "Moved so, samples would lie ahead of the clock. Accepted: {accepted}.",
     "device.moved_too_far": "A clock cannot be off by {value} minutes. Accepted: up to {accepted} minutes, not 0.",
     "device.no_channel": "No channel was named. Accepted: {accepted}.",
@@ -42,7 +42,7 @@ TEMPLATES: Final[dict[str, str]] = {
     "doubt.settings_off_mask":
         "The mask is off since {since:time}: these settings act once it is on. If it is on, log 'mask on' too.",
     "doubt.unusual":
-        "{channel:name} {value:of} is outside the usual {low:of} to {high:of}.",
+        "{channel:name} {value:typed} is outside the usual {low:of} to {high:of}.",
     "entry.id_too_long": "The id '{value}' is too long: at most {accepted} characters are accepted.",
     "entry.in_future": "{at:time} lies in the future: it is {now:time} now. Accepted: {accepted}.",
     "entry.no_episode":

@@ -160,6 +160,15 @@ def _of_channel(value: Value, values: Mapping[str, Value], reader: Reader) -> st
     return formats.quantity(str(values.get("channel", "")), amount, reader.gas_unit)
 
 
+def _of_channel_as_typed(value: Value, values: Mapping[str, Value], reader: Reader) -> str:
+    """A value as it was typed, what it is kept as beside it where that reads otherwise: rounded, it is another."""
+    raw = values.get("raw")
+    if not raw or isinstance(value, str):
+        return _of_channel(value, values, reader)
+    kept = str(values.get("channel", "")), _number(value), str(raw), str(values.get("raw_unit", ""))
+    return formats.logged(*kept, reader.gas_unit)
+
+
 def quantity_text(quantity: str, value: float, reader: Reader, *, sign: bool = False, noise: bool = False) -> str:
     """A value of pH, PaCO2, P/F, rate or SpO2 with its unit; noise limits keep the digits they need."""
     if quantity == "ph":
@@ -268,6 +277,7 @@ _WRITERS: dict[str, Writer] = {
     "name": lambda v, _m, r: r.name(str(v)),
     "unit": lambda v, _m, _r: formats.shown_unit(str(v)),
     "of": _of_channel,
+    "typed": _of_channel_as_typed,
     "q": _quantity(),
     "q+": _quantity(sign=True),
     "qn": _quantity(noise=True),

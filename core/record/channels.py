@@ -248,11 +248,18 @@ def channel(key: str) -> Channel:
     """
     found = CHANNELS.get(key)
     if found is None:
-        from difflib import get_close_matches
-
-        near = ", ".join(get_close_matches(key.lower(), CHANNELS, 4, 0.7))
-        raise refuse("channel.unknown", channel=key, accepted=near or "a channel of the data dictionary")
+        raise refuse(
+            "channel.unknown", channel=key, accepted=", ".join(_near(key)) or "the key of a channel, e.g. ipap"
+        )
     return found
+
+
+def _near(word: str) -> tuple[str, ...]:
+    """The keys that a word that is no key may mean: by their own spelling, short words and names."""
+    from difflib import get_close_matches
+
+    words = {w: c.key for c in CHANNELS.values() for w in (*c.short, c.name.lower().replace(" ", "_"), c.key)}
+    return tuple(dict.fromkeys(words[w] for w in get_close_matches(word.lower().replace(" ", "_"), words, 4, 0.7)))
 
 
 def by_group(group: Group) -> tuple[Channel, ...]:

@@ -98,7 +98,7 @@ def _read_number(channel: Channel, text: str, unit_text: str) -> Reading:
     check_hard(
         channel, number, f"{text} {written(unit.name)}".strip(), unit.name, _meant(channel, typed, text, unit.name)
     )
-    return Reading(channel, number, None, text, unit.name, decimals, soft_doubts(channel, number))
+    return Reading(channel, number, None, text, unit.name, decimals, soft_doubts(channel, number, text, unit.name))
 
 
 def _implied_unit(channel: Channel, typed: float) -> str:
@@ -135,8 +135,8 @@ def check_hard(channel: Channel, number: float, shown: str, unit: str = "", mean
         )  # fmt: skip
 
 
-def soft_doubts(channel: Channel, number: float) -> tuple[Message, ...]:
-    """The question to ask when a number is outside the soft limits."""
+def soft_doubts(channel: Channel, number: float, raw: str = "", raw_unit: str = "") -> tuple[Message, ...]:
+    """The question to ask when a number is outside the soft limits; it tells the number as it was typed."""
     if channel.soft is None or channel.soft[0] <= number <= channel.soft[1]:
         return ()
     low, high = channel.soft
@@ -146,6 +146,8 @@ def soft_doubts(channel: Channel, number: float) -> tuple[Message, ...]:
         "low": low,
         "high": high,
         "unit": channel.unit,
+        "raw": raw,
+        "raw_unit": raw_unit,
     }
     return (Message("doubt.unusual", values),)
 

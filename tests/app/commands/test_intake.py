@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from app.cli import DONE, REFUSED
+from app.cli import DONE, REFUSED, WRONG_USAGE
 from tests.support.command_line import HEADER, ROWS, Run
 
 
@@ -108,3 +108,44 @@ def test_an_episode_that_a_withdrawal_emptied_is_nowhere_and_may_begin_again(fil
     assert code == DONE
     assert "14 entries" in out
     assert "7.33" in filled("figures", "N4")[1]
+
+
+def test_a_channel_that_is_none_is_told_with_those_it_may_mean(filled: Run, tmp_path: Path) -> None:
+    bad = tmp_path / "bad.csv"
+    row = "N4,2026-03-27T20:00:00+00:00,support_started,2026-03-27T20:00:00+00:00,,AB,\n"
+    bad.write_text(HEADER + row + row.replace("support_started", "banana"), "utf-8")
+    err = filled("intake", bad)[2]
+    assert "'support_started' is no channel. Accepted: started_at" in err
+    assert err.count("'luffmark channels' lists all") == 2
+
+
+def test_a_code_that_nobody_knows_is_answered_by_command_once(filled: Run, tmp_path: Path) -> None:
+    """3150-6 is no LOINC code, though senders use it for the inhaled oxygen: nobody but a person may say so."""
+    path = tmp_path / "gas.hl7"
+    path.write_text(SENT.replace("\n", "\r"), "utf-8")
+    code, out, err = filled("intake", path, "--episode", "N4")
+    assert code == DONE, err
+    hint = "luffmark intake --code 'http://loinc.org|3150-6=CHANNEL'"
+    assert ("left aside" in out, hint in out, "'luffmark channels' lists the channels" in out) == (True, True, True)
+    code, _, err = filled("intake", path, "--episode", "N4", "--code", "http://loinc.org|3150-6=gas_fi")
+    assert (code, "Accepted: gas_fio2" in err) == (REFUSED, True)
+    code, out, err = filled("intake", path, "--episode", "N4", "--code", "http://loinc.org|3150-6=gas_fio2")
+    assert (code, "1 entry" in out, "left aside" in out) == (DONE, True, False), (out, err)
+    gas = json.loads(filled("figures", "N4", "--json")[1])["episodes"][0]["gases"][-1]
+    assert gas["pf_mmHg"] == pytest.approx(61 / 0.30)
+    later = tmp_path / "later.hl7"
+    later.write_text(SENT.replace("\n", "\r").replace("0240", "0250").replace("M1", "M2"), "utf-8")
+    assert "left aside" not in filled("intake", later, "--episode", "N4")[1]  # it is kept
+    assert filled("intake", path, "--code", "3150-6=none", "--episode", "N4")[0] == DONE
+    assert filled("intake", path, "--code", "3150-6")[0] == WRONG_USAGE
+
+
+SENT = "\n".join([
+    r"MSH|^~\&|LAB|WARD|LM|WARD|202603280240+0000||ORU^R01^ORU_R01|M1|P|2.5.1|||||||UNICODE UTF-8",
+    "PID|1||P1^^^HOSP^MR", "PV1|1|I|RHDU",
+    "OBR|1|OM1|FM1|24336-0^Gas panel^LN|||202603280240+0000|||||||202603280240+0000|"
+    "BLDA^Arterial blood^HL70487||||||||||F",
+    *(f"OBX|{i}|NM|{what}|{unit}^^UCUM|||||F|||202603280240+0000" for i, (what, unit) in enumerate(
+        [("2744-1^x^LN||7.27", ""), ("2019-8^x^LN||68", "mm[Hg]"), ("2703-7^x^LN||61", "mm[Hg]"),
+         ("3150-6^x^LN||30", "%")], 1)),
+]) + "\n"  # fmt: skip

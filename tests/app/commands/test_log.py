@@ -69,3 +69,17 @@ def test_rows_of_one_minute_in_a_file_act_in_the_order_of_the_file(
     assert filled("intake", log)[0] == DONE
     told = json.loads(filled("figures", "N4", "--as-of", "2026-03-27T22:00Z", "--json")[1])["episodes"][0]
     assert told["support"]["on_mask"] is on
+
+
+def test_an_unusual_value_is_asked_about_as_it_was_typed(filled: Run) -> None:
+    err = filled("log", "N4", "paco2 6.6")[2]
+    assert "PaCO2 6.6 mmHg is outside the usual" in err, err
+    assert (
+        "PaCO2 3.1 kPa is outside the usual 3.3 kPa to 16.0 kPa"
+        in filled("log", "N4", "paco2 3.1kPa", "--gas-unit", "kPa")[2]
+    )
+
+
+def test_an_entry_that_is_none_is_refused_in_a_sentence(filled: Run) -> None:
+    err = filled("correct", "N4", "zzz", "--withdraw", "--reason", "x")[2]
+    assert "Accepted: an id that 'luffmark correct N4' lists." in err
