@@ -18,6 +18,7 @@ from app.words.verdict_loss import LOST_SINCE, with_loss
 from core.judgement.now import headline_response
 from core.judgement.response_shapes import JudgedGas, ResponseFigure
 from core.judgement.shapes import EpisodeFigures, GasFigure
+from core.record.instant import Instant
 from core.record.message import Message
 
 _DECIDES = frozenset({
@@ -143,19 +144,31 @@ def ever_acidotic(f: EpisodeFigures) -> bool:
     return f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)
 
 
+def acidotic_before(f: EpisodeFigures, at: Instant) -> bool:
+    """Whether an acidosis was seen before a moment: what it says of a gas of then could have resolved."""
+    seen = [g.at for g in f.gases if g.state in ("severe", "acidotic")]
+    return min(seen) < at if seen else f.now.ever_acidotic
+
+
 def gas_state_word(f: EpisodeFigures, gas: GasFigure) -> str:
-    """The state of a gas; what never was acidotic has not resolved, and a pH above its limits is no normal one."""
+    """The state of a gas; what was not acidotic before it has not resolved, and a pH above its limits is no normal
+    one."""
     if gas.state != "resolved":
         return state_word(state_of(gas.state))
     if gas.ph_above is not None:
         return translate("headline", "not acidotic, pH above {limit}").format(limit=fixed(gas.ph_above, 2))
-    return state_word(state_of(gas.state)) if ever_acidotic(f) else translate("headline", "not acidotic")
+    return state_word(state_of(gas.state)) if acidotic_before(f, gas.at) else translate("headline", "not acidotic")
 
 
 def response_state_word(f: EpisodeFigures, response: ResponseFigure) -> str:
     """The state of the gas that a headline rests on."""
     gas = next((g for g in f.gases if g.at == response.headline_gas_at and g.state == response.state), None)
-    return gas_state_word(f, gas if gas is not None else GasFigure(response.anchor_at, "", state=response.state))
+    return gas_state_word(
+        f,
+        gas
+        if gas is not None
+        else GasFigure(response.headline_gas_at or response.anchor_at, "", state=response.state),
+    )
 
 
 def pf_word(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:

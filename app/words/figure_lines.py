@@ -46,8 +46,8 @@ class FigureLines:
     """Writes figures for one reader."""
 
     reader: Reader
-    ever_acidotic: bool = True
-    """Whether there was an acidosis that could have resolved."""
+    acidotic_from: Instant | None = -(2**62)
+    """Since when there was an acidosis that could have resolved; None where there never was."""
     above: Mapping[Instant, float] = field(default_factory=dict)
     """Gases whose pH is above its upper limit, and that limit."""
     gases: Mapping[Instant, GasFigure] = field(default_factory=dict)
@@ -55,16 +55,19 @@ class FigureLines:
 
     def of(self, f: EpisodeFigures) -> FigureLines:
         """The same for one episode, whose states depend on what was before."""
-        acidotic = f.now.ever_acidotic or any(g.state in ("severe", "acidotic") for g in f.gases)
+        always = -(2**62) if f.now.ever_acidotic else None
+        first = min((g.at for g in f.gases if g.state in ("severe", "acidotic")), default=always)
         above = {g.at: g.ph_above for g in f.gases if g.ph_above is not None and g.state is not None}
         gases = {g.at: g for g in f.gases if g.site != "venous"}
-        return replace(self, ever_acidotic=acidotic, above=above, gases=gases)
+        return replace(self, acidotic_from=first, above=above, gases=gases)
 
     def state(self, state: str, at: Instant | None = None) -> str:
-        """The state of a gas of a moment; what never was acidotic has not resolved, nor is all the rest normal."""
+        """The state of a gas of a moment; what was not acidotic before has not resolved, nor is all the rest normal."""
         if state == "resolved" and at is not None and at in self.above:
             return f"{self.tr('not acidotic, pH above')} {formats.fixed(self.above[at], 2)}"
-        return self.tr("not acidotic" if state == "resolved" and not self.ever_acidotic else state)
+        first = self.acidotic_from
+        resolved = first is not None and (at is None or first < at)
+        return self.tr("not acidotic" if state == "resolved" and not resolved else state)
 
     def tr(self, text: str) -> str:
         """A phrase in the reader's language."""

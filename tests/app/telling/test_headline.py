@@ -82,6 +82,16 @@ def test_what_never_was_acidotic_has_not_resolved() -> None:
     assert gas_state_word(resolved, resolved.gases[-1]) == "resolved"
 
 
+def test_a_gas_from_before_the_acidosis_has_not_resolved_by_it() -> None:
+    """Of pH 7.41, 7.29 and 7.38 the first never was acidotic, whatever came after; the last has resolved."""
+    states = ("resolved", "acidotic", "resolved")
+    gases = tuple(GasFigure(at, "arterial", ph=7.4, state=s) for at, s in enumerate(states, 1))
+    f = EpisodeFigures("E", 9, gases=gases, now=NowFigure(ever_acidotic=True))
+    assert [gas_state_word(f, g) for g in gases] == ["not acidotic", "acidotic", "resolved"]
+    lines = FigureLines(Reader()).of(f)
+    assert [lines.state(str(g.state), g.at) for g in gases] == ["not acidotic", "acidotic", "resolved"]
+
+
 def test_where_oxygen_fails_it_comes_first_in_the_readers_unit() -> None:
     f = bed("Bay A 1")
     assert state_now(f, f.gases[-1], "mmHg", "UTC") == "P/F 107 mmHg; not acidotic"
