@@ -163,12 +163,9 @@ def gas_state_word(f: EpisodeFigures, gas: GasFigure) -> str:
 def response_state_word(f: EpisodeFigures, response: ResponseFigure) -> str:
     """The state of the gas that a headline rests on."""
     gas = next((g for g in f.gases if g.at == response.headline_gas_at and g.state == response.state), None)
-    return gas_state_word(
-        f,
-        gas
-        if gas is not None
-        else GasFigure(response.headline_gas_at or response.anchor_at, "", state=response.state),
-    )
+    if gas is None:
+        gas = GasFigure(response.headline_gas_at or response.anchor_at, "", state=response.state)
+    return gas_state_word(f, gas)
 
 
 def pf_word(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:

@@ -62,7 +62,7 @@ class FigureLines:
         return replace(self, acidotic_from=first, above=above, gases=gases)
 
     def state(self, state: str, at: Instant | None = None) -> str:
-        """The state of a gas of a moment; what was not acidotic before has not resolved, nor is all the rest normal."""
+        """The state of a gas of a moment: what was not acidotic before has not resolved, nor is the rest normal."""
         if state == "resolved" and at is not None and at in self.above:
             return f"{self.tr('not acidotic, pH above')} {formats.fixed(self.above[at], 2)}"
         first = self.acidotic_from
