@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -33,7 +34,8 @@ if TYPE_CHECKING:
 class IntakeDialog(AskingDialog):
     """Reads, shows, and takes in when told to; `taken()` when it is in. Leaving stops a reading that still runs."""
 
-    taken = Signal()
+    taken = Signal(str, object)
+    """What was taken in, in a sentence, and of which episodes."""
 
     def __init__(
         self, model: SessionModel, file: Path | ReadRequest, reader: Reader, theme: Theme,
@@ -59,6 +61,7 @@ class IntakeDialog(AskingDialog):
         self.leave_out.toggled.connect(self._leave_all)
         self.patients = PatientRows(theme)
         self.patients.said.connect(self._patient_said)
+        self.patients.nothing_said.connect(self._patient_not_said)
         self.codes = CodeRows(theme)
         self.codes.said.connect(self._codes_said)
         self.left = plain_label()
@@ -101,6 +104,9 @@ class IntakeDialog(AskingDialog):
         self.go.setEnabled(False)
         self._request = replace(self._request, patients={**self._request.patients, identifier: episode})
         self._ask()
+
+    def _patient_not_said(self) -> None:
+        self.refuse(self.tr("Choose the episode first, or type its key."))
 
     def _codes_said(self, answers: dict[str, str]) -> None:
         """A person says what codes are: that is kept, and the file is read again with it."""
@@ -183,16 +189,10 @@ class IntakeDialog(AskingDialog):
 
     def words(self, intake: Intake) -> str:
         """The file in a few sentences."""
-        of = _counted(len(intake.episodes), self.tr("1 episode"), self.tr("{count} episodes"))
-        brought = []
-        if intake.entries or not intake.sample_count:
-            brought.append(_counted(len(intake.entries), self.tr("1 entry"), self.tr("{count} entries")))
-        if intake.sample_count:
-            text = self.tr("{count} device samples")
-            brought.append(_counted(intake.sample_count, self.tr("1 device sample"), text))
-        told = self.tr("{name}: {brought} for {episodes}.")
-        joined = self.tr(" and ").join(brought)
-        parts = [told.format(name=self._path.name, brought=joined, episodes=of)]
+        told, brought = self.tr("{name}: {brought} for {episodes}."), (len(intake.entries), intake.sample_count)
+        parts = [
+            told.format(name=self._path.name, brought=self._brought(*brought), episodes=self._of(intake.episodes))
+        ]
         if intake.new_episodes:
             begins = _counted(len(intake.new_episodes), self.tr("A new episode begins: {keys}."),
                               self.tr("{count} new episodes begin: {keys}."))  # fmt: skip
@@ -218,6 +218,18 @@ class IntakeDialog(AskingDialog):
             parts.append(self.tr("There is nothing new in it."))
         return " ".join(parts)
 
+    def _brought(self, entries: int, samples: int) -> str:
+        """How many values, in words."""
+        brought = []
+        if entries or not samples:
+            brought.append(_counted(entries, self.tr("1 entry"), self.tr("{count} entries")))
+        if samples:
+            brought.append(_counted(samples, self.tr("1 device sample"), self.tr("{count} device samples")))
+        return self.tr(" and ").join(brought)
+
+    def _of(self, episodes: Sequence[str]) -> str:
+        return _counted(len(episodes), self.tr("1 episode"), self.tr("{count} episodes"))
+
     def _leave_all(self, on: bool) -> None:
         """All refused rows at once, those among them that the table does not show."""
         self.table.tick_all(on)
@@ -238,9 +250,15 @@ class IntakeDialog(AskingDialog):
         clean = intake is not None and (not intake.refusals or self.leave_out.isChecked())
         self.go.setEnabled(bool(new and clean and intake is not None and intake.whole))
 
-    def _taken(self, outcome: Outcome[intake_operations.Taken]) -> None:  # noqa: ARG002
+    def _taken(self, outcome: Outcome[intake_operations.Taken]) -> None:
+        made = outcome.value
+        told = self.tr(
+            "{name} is taken in: {brought} for {episodes}. File, Files taken in... withdraws it whole."
+        ).format(
+            name=self._path.name, brought=self._brought(made.entries, made.samples), episodes=self._of(made.episodes)
+        )
         self.accept()
-        self.taken.emit()
+        self.taken.emit(told, made.episodes)
 
     def _not_taken(self, failure: Failure) -> None:
         """Why it was not taken. Where others have recorded of the same episodes since, it is read again and shown."""

@@ -47,7 +47,8 @@ class CodeRows(QWidget):
         self.hide()
 
     def show_unknown(self, codes: Sequence[UnknownCode]) -> None:
-        """Ask for codes; none hides the rows."""
+        """Ask for codes; none hides the rows. What was chosen and not kept yet stays chosen."""
+        before = self.answers
         emptied(self._grid)
         self.boxes = {}
         self.setVisible(bool(codes))
@@ -66,6 +67,9 @@ class CodeRows(QWidget):
         none = QPushButton(self.tr("None of them is wanted"))
         none.setProperty("role", "small")
         none.clicked.connect(self._want_none)
+        for key in before.keys() & self.boxes.keys():
+            self.boxes[key].setCurrentIndex(self.boxes[key].findData(before[key]))
+        self._answered()
         self._grid.addWidget(none, len(shown) + 1, 1)
         self._grid.addWidget(self.keep, len(shown) + 1, 2)
 

@@ -66,12 +66,16 @@ class FilesInTurn(QObject):
         dialog.rejected.connect(self._go_on)
         return self._opened(dialog, request.path)
 
-    def _taken(self) -> None:
+    def _taken(self, told: str, episodes: Sequence[str]) -> None:
         from app.dialogs.intake import IntakeDialog
 
         dialog = self.sender()
         if isinstance(dialog, IntakeDialog):
             self._named = {**self._named, **dialog.request.patients}
+        strip = self._window.strip
+        if strip is not None and strip.patient is None and episodes:
+            strip.say_of(episodes[0], told, *episodes[1:])
+        self._window.say(told)
         self._go_on()
 
     def _opened(self, dialog: QDialog, path: Path) -> QDialog:

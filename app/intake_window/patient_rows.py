@@ -20,6 +20,8 @@ class PatientRows(QWidget):
     """`said(identifier, episode)` when a person says whose an identifier is."""
 
     said = Signal(str, str)
+    nothing_said = Signal()
+    """Confirmed with no episode chosen."""
 
     def __init__(self, theme: Theme, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -34,12 +36,17 @@ class PatientRows(QWidget):
     def show_unknown(
         self, identifiers: Sequence[str], episodes: Mapping[str, str], *, of_table: bool = False
     ) -> None:
-        """Ask for identifiers, or for the names of a table's column; none hides the rows. Nothing is chosen."""
+        """Ask for identifiers, or for the names of a table's column; none hides the rows. Nothing is chosen but what
+        a person chose here before and has not confirmed."""
+        before = {text: box.currentText() for text, box in self.boxes.items()}
         emptied(self._grid)
         self.boxes, self.buttons = {}, {}
         for row, text in enumerate(identifiers[:MOST]):
             asked = self.tr("'{name}' in this file is") if of_table else self.tr("Patient {identifier} is")
             self._add(row, text, plain_label(asked.format(name=text, identifier=text)), episodes)
+        for text in before.keys() & self.boxes.keys():
+            self.boxes[text].setCurrentIndex(max(self.boxes[text].findText(before[text]), 0))
+            self.boxes[text].setEditText(before[text])
         self.setVisible(bool(identifiers))
 
     def _add(self, row: int, text: str, label: QLabel, episodes: Mapping[str, str]) -> None:
@@ -63,3 +70,6 @@ class PatientRows(QWidget):
         episode = chosen_or_typed(self.boxes[text])
         if episode:
             self.said.emit(text, episode)
+        else:
+            self.boxes[text].setFocus()
+            self.nothing_said.emit()

@@ -92,9 +92,9 @@ class LogStrip(StripFrame):
             self._clear()
             self._put_back()
         if record is not None and record.key in self._news:
-            newest = self._undo.newest
-            of = newest if newest is not None and newest.episode == record.key else None
-            self._become(State.TOLD, escape(self._news.pop(record.key)), of=of)
+            of = last if (last := self._undo.newest) is not None and last.episode == record.key else None
+            news, self._news = self._news[record.key], {}
+            self._become(State.TOLD, escape(news), of=of)
 
     def set_closed(self, why: str) -> None:
         """Take no line, and say why; "" opens the strip again, and what was half typed is back."""
@@ -364,9 +364,9 @@ class LogStrip(StripFrame):
 
     # words
 
-    def say_of(self, episode: str, text: str) -> None:
-        """Say something as soon as that episode is in hand: one that was just begun has no figures yet."""
-        self._news = {episode: text}
+    def say_of(self, episode: str, text: str, *others: str) -> None:
+        """Say something as soon as one of them is in hand: one that was just begun has no figures yet."""
+        self._news = dict.fromkeys((episode, *others), text)
 
     def say(self, text: str) -> None:
         """Say something under the line."""

@@ -139,6 +139,45 @@ def test_a_code_without_an_answer_stays_aside(qtbot, window, tmp_path):
     taken(qtbot, window, dialog)
 
 
+def test_what_is_said_of_codes_leaves_the_patient_that_was_chosen_and_the_other_way_round(qtbot, window, tmp_path):
+    path = tmp_path / "results.hl7"
+    path.write_text(message([*gas(), *LOCAL], **WHEN))
+    dialog = shown(qtbot, window, path)
+    (identifier,) = dialog.patients.boxes
+    box = dialog.patients.boxes[identifier]
+    dialog.patients.buttons[identifier].click()
+    assert "Choose the episode first" in dialog.wrong.text()
+    box.setCurrentIndex(box.findData("bed-7"))
+    for key in ("L|PCO2T", "L|K"):
+        code = dialog.codes.boxes[key]
+        code.setCurrentIndex(code.findData(""))
+        code.activated.emit(code.currentIndex())
+        if key == "L|K":
+            break
+        first = dialog.intake
+        dialog.codes.keep.click()
+        until(qtbot, lambda before=first: dialog.intake is not before)
+        assert dialog.patients.boxes[identifier].currentText() == "Bed 7 (bed-7)"
+    first = dialog.intake
+    dialog.patients.buttons[identifier].click()
+    until(qtbot, lambda: dialog.intake is not first)
+    assert dialog.patients.isHidden()
+    assert dialog.codes.answers == {"L|K": ""}
+    assert dialog.codes.keep.isEnabled()
+    taken(qtbot, window, dialog)
+
+
+# what was taken in is told
+
+
+def test_what_was_taken_in_is_told_on_the_strip(qtbot, window, tmp_path):
+    path = tmp_path / "night.csv"
+    path.write_text(HEAD + GOOD)
+    taken(qtbot, window, shown(qtbot, window, path))
+    told = "night.csv is taken in: 1 entry for 1 episode. File, Files taken in... withdraws it whole."
+    assert window.strip.plain() == told
+
+
 # other windows and leaving
 
 
