@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 import numpy as np
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen, QPolygonF
 from PySide6.QtWidgets import QWidget
 
+from app.chart.end_labels import spread
 from app.chart.marks import draw_card
 from app.chart.value_ticks import value_ticks
 from app.compare.courses import Comparison, Line, Row, words_of
@@ -113,25 +116,33 @@ class CourseChart(QWidget):
         painter.fillRect(QRectF(round(self._x(0, view)), view.top(), 1, view.height()), QColor(c.edge))
         painter.save()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        taken: list[float] = []
-        for line in sorted(
-            row.lines,
-            key=lambda x: -x.values[np.isfinite(x.values)][-1] if np.isfinite(x.values).any() else 0,
-        ):
-            self._draw_line(painter, line, row, view, taken)
+        for line in row.lines:
+            self._draw_line(painter, line, row, view)
+        self._draw_numbers(painter, row, view)
         painter.restore()
+
+    def _points(self, line: Line, row: Row, view: QRectF) -> list[QPointF]:
+        known = ((h, v) for h, v in zip(line.hours, line.values, strict=True) if v == v)
+        return [QPointF(self._x(h, view), self._y(v, row, view)) for h, v in known]
+
+    def _draw_numbers(self, painter: QPainter, row: Row, view: QRectF) -> None:
+        """Each line's number at its end; only those that end side by side make room for each other."""
+        px = self._theme.px
+        painter.setFont(self._theme.font(self._theme.type.caption, bold=True))
+        for number, at in numbers_at(
+            row.lines, [self._points(x, row, view) for x in row.lines], view, px(13), px(26)
+        ):
+            painter.setPen(pen_of(self._theme, number).color())
+            room = QRectF(min(at.x() + px(6), view.right() + px(6)), at.y() - px(8), px(24), px(16))
+            painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, str(number))
 
     def _y(self, value: float, row: Row, view: QRectF) -> float:
         return view.bottom() - (value - row.low) / (row.high - row.low) * view.height()
 
-    def _draw_line(self, painter: QPainter, line: Line, row: Row, view: QRectF, taken: list[float]) -> None:
-        theme, px = self._theme, self._theme.px
-        pen = pen_of(theme, line.number)
-        points = [
-            QPointF(self._x(h, view), self._y(v, row, view))
-            for h, v in zip(line.hours, line.values, strict=True)
-            if v == v
-        ]
+    def _draw_line(self, painter: QPainter, line: Line, row: Row, view: QRectF) -> None:
+        px = self._theme.px
+        pen = pen_of(self._theme, line.number)
+        points = self._points(line, row, view)
         if not points:
             return
         painter.save()
@@ -144,14 +155,6 @@ class CourseChart(QWidget):
             for p in points:
                 painter.drawEllipse(p, px(3), px(3))
         painter.restore()
-        y = points[-1].y()
-        while any(abs(y - other) < px(13) for other in taken):
-            y += px(13)
-        taken.append(y)
-        painter.setFont(theme.font(theme.type.caption, bold=True))
-        painter.setPen(pen.color())
-        room = QRectF(min(points[-1].x() + px(6), view.right() + px(6)), y - px(8), px(24), px(16))
-        painter.drawText(room, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, str(line.number))
 
     def _draw_hours(self, painter: QPainter, box: QRectF) -> None:
         assert self.comparison is not None
@@ -169,6 +172,24 @@ class CourseChart(QWidget):
                 Qt.AlignmentFlag.AlignCenter,
                 word,
             )
+
+
+def numbers_at(
+    lines: Sequence[Line], points: Sequence[Sequence[QPointF]], view: QRectF, step: float, beside: float
+) -> list[tuple[int, QPointF]]:
+    """Where each line's number stands: at its last point, `step` from any other that ends less than `beside` away."""
+    ends = sorted(((p[-1].x(), p[-1].y(), line.number) for line, p in zip(lines, points, strict=True) if p))
+    groups: list[list[tuple[float, float, int]]] = []
+    for end in ends:
+        if groups and end[0] - groups[-1][-1][0] < beside:
+            groups[-1].append(end)
+        else:
+            groups.append([end])
+    placed = []
+    for group in groups:
+        ys = spread([y - view.top() for _, y, _ in group], step, view.height())
+        placed += [(n, QPointF(x, view.top() + y)) for (x, _, n), y in zip(group, ys, strict=True)]
+    return placed
 
 
 def _stepped(points: list[QPointF]) -> list[QPointF]:

@@ -147,7 +147,7 @@ class PreviewedForm(FittedDialog):
         head.addWidget(self.time)
         when.setVisible(self.timed)
         self.time.setVisible(self.timed)
-        self.time.setFixedWidth(px(130))
+        self.time.setFixedWidth(px(168))  # yesterday 23:00
         column = QVBoxLayout(self)
         column.setContentsMargins(px(18), px(14), px(18), px(14))
         column.setSpacing(px(10))

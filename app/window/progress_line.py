@@ -13,7 +13,7 @@ AFTER_MS = 1000
 
 
 class ProgressLine(QFrame):
-    """Stands at the lower right of `over`, above what is there."""
+    """Stands at the lower left of `over`, above what is there: at the right stand the legend and what is due."""
 
     cancelled = Signal(int)
 
@@ -31,6 +31,7 @@ class ProgressLine(QFrame):
         self.stop = QPushButton(self.tr("Stop"))
         self.stop.setProperty("role", "small")
         row = QHBoxLayout(self)
+        row.setContentsMargins(10, 3, 6, 3)
         row.addWidget(self.word)
         row.addWidget(self.bar)
         row.addWidget(self.stop)
@@ -54,6 +55,8 @@ class ProgressLine(QFrame):
         self.word.setText(subject_words(progress.subject))
         self.bar.setRange(0, progress.total)
         self.bar.setValue(progress.done)
+        if self.isVisible():
+            self.place()  # as wide as its words
 
     def busy_changed(self, busy: bool) -> None:
         """Work began, or all of it is done."""
@@ -79,8 +82,8 @@ class ProgressLine(QFrame):
         if self._over is None or parent is None:
             return
         self.adjustSize()
-        corner = self._over.mapTo(parent, self._over.rect().bottomRight())
-        self.move(corner.x() - self.width() - 12, corner.y() - self.height() - 12)
+        corner = self._over.mapTo(parent, self._over.rect().bottomLeft())
+        self.move(corner.x() + 12, corner.y() - self.height())
         self.raise_()
 
     def _stop(self) -> None:

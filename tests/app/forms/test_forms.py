@@ -224,6 +224,13 @@ def test_what_was_said_of_other_fields_does_not_stay_up_while_the_store_is_busy(
     assert form.plain().startswith("Not recorded yet.")
 
 
+def test_the_longest_moment_that_people_type_has_room(qtbot, window):
+    form = opened(qtbot, window, Key.Key_F12, VitalsForm)
+    room = form.time.contentsRect().width() - form.time.textMargins().left() - form.time.textMargins().right()
+    assert form.time.fontMetrics().horizontalAdvance("yesterday 23:00") + 28 <= room  # 28: the frame's padding
+    form.reject()
+
+
 def test_vital_signs_start_empty_with_the_last_beside_them(qtbot, window):
     form = opened(qtbot, window, Key.Key_F12, VitalsForm)
     assert all(not f.text for f in form.fields.values())

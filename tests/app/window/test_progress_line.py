@@ -37,6 +37,7 @@ def test_long_work_is_shown_stopped_and_gone(qtbot, monkeypatch):
     line.show_progress(Progress(7, "ward figures", 3, 10))
     assert (line.bar.value(), line.bar.maximum()) == (3, 10)
     assert "ward's figures" in line.word.text()
+    assert line.word.width() >= line.word.sizeHint().width(), "its words are whole though they came later"
     with qtbot.waitSignal(line.cancelled) as asked:
         line.stop.click()
     assert asked.args == [7]
