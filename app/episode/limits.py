@@ -8,7 +8,7 @@ from app.chart.shapes import Band
 from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import Panel
 from app.episode.traces import shown_as
-from app.look.formats import fixed, trimmed
+from app.look.formats import fixed, lately, trimmed
 from app.telling.phrases import translate
 
 _BEYOND = 1e6
@@ -46,6 +46,9 @@ def _saturation(on: EpisodeOnScreen) -> Iterator[Band]:
     if not now.spo2_target_prescribed:
         told = translate("stack", "SpO2 {low} to {high} %, none prescribed")
     word = told.format(low=trimmed(now.spo2_target_low), high=trimmed(now.spo2_target_high))
+    if now.spo2_target_since is not None:  # the band lies over all of the time, the range was another one before
+        since = translate("stack", "{word}, since {time}")
+        word = since.format(word=word, time=lately(now.spo2_target_since, on.figures.as_of, on.zone))
     yield Band(now.spo2_target_low, now.spo2_target_high, "%", word)
 
 

@@ -14,7 +14,7 @@ from app.telling.phrases import channel_name
 from app.telling.undone import undone_word
 from app.words import Reader
 from app.words.figure_lines import FigureLines
-from core.figures.since_handover import FactChange, SinceHandover, Verdict
+from core.figures.since_handover import FactChange, SinceHandover, TargetChange, Verdict
 from core.judgement.shapes import DueFigure, FlagFigure
 
 _SUPPORT: Final = {
@@ -72,6 +72,8 @@ class _SinceWriter:
             yield tr("Settings: {those}.").format(those=", ".join([*support, *changed]))
         if s.gas_after is not None:
             yield tr("State: {state}.").format(state=self._state())
+        if s.target is not None:
+            yield self._target(s.target)
         if s.verdicts:
             yield tr("Verdicts: {those}.").format(those="; ".join(self._verdict(v) for v in s.verdicts))
         if self._short and (s.raised or s.gone):
@@ -129,6 +131,13 @@ class _SinceWriter:
             times.setdefault(due_name(d.what, self._reader), []).append(d.done_at or 0)
         for name, found in times.items():
             yield f"{name} {', '.join(self._reader.time(at) for at in sorted(set(found)))}"
+
+    def _target(self, change: TargetChange) -> str:
+        """A range that nobody prescribed: the next shift must not take it for somebody's decision."""
+        told = tr("SpO2 range {old} to {new} since {at}: a gas showed hypercapnia, none is prescribed.")
+        old, new = (tr("{low}-{high} %").format(low=formats.trimmed(low), high=formats.trimmed(high))
+                    for low, high in (change.before, change.after))  # fmt: skip
+        return told.format(old=old, new=new, at=self._reader.time(change.at))
 
     def _fact(self, fact: FactChange) -> str:
         name = channel_name(fact.channel)

@@ -51,7 +51,7 @@ class SheetWriter:
         if last.state == "resolved" and last.ph_above is not None:
             state += tr(", pH above {fixed}").format(fixed=formats.fixed(last.ph_above, 2))
         pf = f", P/F {self._lines.pressure(last.pf_mmHg)}" if last.pf_mmHg is not None else ""
-        if f.now.oxygen_failure and f.now.pf_mmHg is not None:
+        if (f.now.oxygen_failure or f.now.oxygen_failed_before) and f.now.pf_mmHg is not None:
             first = "P/F" if ever_acidotic(f) else tr("Hypoxaemic: P/F")
             dated = f.now.pf_at is not None and f.now.pf_at != last.at
             at = tr(" at {moment}").format(moment=self._moment(f.now.pf_at)) if dated and f.now.pf_at else ""

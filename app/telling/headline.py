@@ -169,8 +169,10 @@ def response_state_word(f: EpisodeFigures, response: ResponseFigure) -> str:
 
 
 def pf_word(f: EpisodeFigures, gas: GasFigure, gas_unit: str, zone: str) -> str:
-    """The newest P/F where oxygen is what fails, "" elsewhere; with its time where not of this gas."""
-    if not f.now.oxygen_failure or f.now.pf_mmHg is None:
+    """The newest P/F where oxygen is what fails, or failed before CO2 rose too; "" elsewhere. With its time where not
+    of this gas."""
+    fails = f.now.oxygen_failure or f.now.oxygen_failed_before
+    if not fails or f.now.pf_mmHg is None:
         return ""
     told = f"P/F {gas_pressure(f.now.pf_mmHg, gas_unit)}"
     if f.now.pf_at is None or f.now.pf_at == gas.at:

@@ -54,6 +54,10 @@ EVIDENCE: Final[dict[str, str]] = {
     "evidence.overdue": "{what:due} was due by {until:time}.",
     "evidence.score": "{score:name}[[ {points:trim} points]][[!points| between {lowest:trim} and {highest:trim}]] "
         "at {at:time}, above {limit:trim}[[; missing: {missing:list}]].",
+    "evidence.range_then":
+        "The range was {low:trim} to {high:trim} % then; since {since:time} it is {low_now:trim} to "
+        "{high_now:trim} %, "
+        "{by:pick prescribed=as prescribed;gas=by a gas that showed hypercapnia, none prescribed}.",
     "evidence.score_rise": "{score:name} {before:trim} ({before_at:time}) to at least {lowest:trim} ({at:time}).",
     "evidence.share": "Off the mask for {percent:0} % of {minutes:minutes} "
         "({breaks:pick 1=one break;else=# breaks}), limit {limit:0} %.",

@@ -23,7 +23,7 @@ _INSTANTS = frozenset(
     {"at", "as_of", "since", "ended_at", "last_change_at", "break_since", "anchor_at", "first_at", "window_from",
      "window_to", "baseline_at", "headline_gas_at", "superseded_at", "span_from", "seen_at", "settled_at",
      "due_from", "due_until", "done_at", "observed_at", "latest_at", "over_since", "adjusted_at",
-     "off_mask_since", "last_logged_at", "headline_at", "pf_at"}
+     "spo2_target_since", "back_on_at", "off_mask_since", "last_logged_at", "headline_at", "pf_at"}
 )  # fmt: skip
 _SPANS = frozenset({"t", "at", "probable_breaks", "median_of", "latest_median_of", "counted"})
 _MICROSECONDS = 10**14

@@ -35,6 +35,15 @@ class FactChange:
 
 
 @dataclass(frozen=True, slots=True)
+class TargetChange:
+    """Another SpO2 range in force, in %, that nobody prescribed: `at` is when a gas showed hypercapnic risk."""
+
+    before: tuple[float, float]
+    after: tuple[float, float]
+    at: Instant
+
+
+@dataclass(frozen=True, slots=True)
 class Verdict:
     """A response that tells more than it did. `before` is its headline then; None where the change is newer."""
 
@@ -61,12 +70,14 @@ class SinceHandover:
     """Flags that were open then and are not now, as they stand now."""
     done: tuple[DueFigure, ...] = ()
     facts: tuple[FactChange, ...] = ()
+    target: TargetChange | None = None
+    """The SpO2 range, where it changed without a prescription; a prescribed one is among the facts."""
 
     @property
     def is_nothing(self) -> bool:
         """Whether all reads as it did."""
         told = (self.settings, self.support, self.verdicts, self.raised, self.gone, self.done, self.facts)
-        return self.was_there and self.gas_after is None and not any(told)
+        return self.was_there and self.gas_after is None and self.target is None and not any(told)
 
 
 def since_handover(then: EpisodeFigures | None, now: EpisodeFigures, since: Instant) -> SinceHandover:
@@ -80,7 +91,7 @@ def since_handover(then: EpisodeFigures | None, now: EpisodeFigures, since: Inst
         before if other else None, after if other else None, tuple(_verdicts(then.responses, now.responses)),
         _raised(then.flags, now.flags, since), tuple(_gone(then.flags, now.flags)),
         tuple(d for d in now.due if d.state == "done" and d.done_at is not None and d.done_at > since),
-        tuple(_facts(then, now)),
+        tuple(_facts(then, now)), _target(then, now),
     )  # fmt: skip
 
 
@@ -148,6 +159,19 @@ def _gone(then: Iterable[FlagFigure], now: tuple[FlagFigure, ...]) -> Iterable[F
         told.add(flag.marker)
         yield max((f for f in now if f.marker == flag.marker), key=lambda f: (f.flag_id == flag.flag_id, f.since),
                   default=flag)  # fmt: skip
+
+
+def _target(then: EpisodeFigures, now: EpisodeFigures) -> TargetChange | None:
+    """The range that a gas changed; None where a person prescribed the one in force."""
+    old, new = then.now, now.now
+    if new.spo2_target_since is None or not new.spo2_target_by_gas:
+        return None
+    if old.spo2_target_low is None or old.spo2_target_high is None:
+        return None
+    if new.spo2_target_low is None or new.spo2_target_high is None:
+        return None
+    before, after = (old.spo2_target_low, old.spo2_target_high), (new.spo2_target_low, new.spo2_target_high)
+    return TargetChange(before, after, new.spo2_target_since) if before != after else None
 
 
 def _facts(then: EpisodeFigures, now: EpisodeFigures) -> Iterable[FactChange]:

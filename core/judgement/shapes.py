@@ -308,6 +308,8 @@ class NowFigure:
     """Any arterial or capillary gas of the record was; else "resolved" would tell of what never was."""
     oxygen_failure: bool = False
     """The newest arterial P/F on support is at or below 300 and the newest gas is not acutely hypercapnic."""
+    oxygen_failed_before: bool = False
+    """The P/F is still at or below 300 in a patient who failed by oxygen alone before CO2 rose too: it stays told."""
     pf_mmHg: float | None = None
     """The newest arterial P/F on support."""
     pf_at: Instant | None = None
@@ -327,6 +329,10 @@ class NowFigure:
     spo2_target_high: float | None = None
     """The range in % that SpO2 is judged against: as prescribed, else as the risk calls for."""
     spo2_target_prescribed: bool = False
+    spo2_target_since: Instant | None = None
+    """When the range became another one since the record began; None where it has always been what it is."""
+    spo2_target_by_gas: bool = False
+    """Nobody prescribed that change: a gas showed hypercapnic risk."""
 
 
 @dataclass(frozen=True, slots=True)

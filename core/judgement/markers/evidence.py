@@ -58,6 +58,7 @@ KEYS: Final[Mapping[str, tuple[str, ...]]] = MappingProxyType(
         "evidence.off_support": ("at",),
         "evidence.not_steady": ("minutes", "back_on_at", "at"),
         "evidence.support_ended": ("at",),
+        "evidence.range_then": ("low", "high", "since", "low_now", "high_now", "by"),
         "evidence.on_oxygen": ("fio2", "at"),
         "evidence.venous": ("at",),
         "evidence.after_beta_agonist": ("at", "text"),

@@ -7,11 +7,13 @@ only while oxygen is given.
 from __future__ import annotations
 
 from collections.abc import Iterable
+from dataclasses import replace
 
 import numpy as np
 
 from core.judgement.markers import evidence as say
 from core.judgement.markers.observed import Observed
+from core.judgement.markers.range_in_force import changed_since
 from core.judgement.markers.spells import Point, Spell, from_points, united
 from core.judgement.policy_sections import MarkerRule
 from core.judgement.sustained import spells as crossings
@@ -31,13 +33,13 @@ def spo2_deep(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     margin = rule.limits["points"]
     spo2, low, _ = seen.once(ranged)
     # at least `points` below counts: the crossing is strict, so the limit lies a hair above
-    return _out(rule, spo2, low - margin + 1e-9, spo2.v <= low - margin, say.AT_MOST)
+    return _out(seen, rule, spo2, low - margin + 1e-9, spo2.v <= low - margin, say.AT_MOST)
 
 
 def spo2_below_range(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
     """SpO2 below range for 15 min, or twice in a row."""
     spo2, low, _ = seen.once(ranged)
-    return _out(rule, spo2, low, spo2.v < low, say.BELOW)
+    return _out(seen, rule, spo2, low, spo2.v < low, say.BELOW)
 
 
 def spo2_above_range(seen: Observed, rule: MarkerRule) -> Iterable[Spell]:
@@ -63,10 +65,10 @@ def _above(seen: Observed, rule: MarkerRule, *, at_risk: bool, margin: float = 0
         return []
     counts = seen.oxygen_given(spo2.t) & (seen.at_risk(spo2.t) == at_risk)
     limit = np.where(counts, high, np.inf)
-    return _out(rule, spo2, limit, spo2.v > limit, say.AT_LEAST if margin else say.ABOVE)
+    return _out(seen, rule, spo2, limit, spo2.v > limit, say.AT_LEAST if margin else say.ABOVE)
 
 
-def _out(rule: MarkerRule, spo2: Series, limit: Values, out: Flags, relation: str) -> list[Spell]:
+def _out(seen: Observed, rule: MarkerRule, spo2: Series, limit: Values, out: Flags, relation: str) -> list[Spell]:
     """`relation`: how a value that counts stands to the limit that the evidence tells."""
     if not out.any():
         return []
@@ -75,7 +77,14 @@ def _out(rule: MarkerRule, spo2: Series, limit: Values, out: Flags, relation: st
         *_by_machine(rule, spo2.cut(machine), limit[machine], relation),
         *_by_people(spo2, limit, out, relation),
     ]
-    return united(found)
+    return [_with_range(seen, s) for s in united(found)]
+
+
+def _with_range(seen: Observed, spell: Spell) -> Spell:
+    """The range of then beside values that were judged by another than that of now."""
+    newest = max((int(m.values["at"] or 0) for m in spell.evidence), default=None)
+    more = () if newest is None else changed_since(seen, newest)
+    return replace(spell, evidence=(*spell.evidence, *more)) if more else spell
 
 
 def _by_machine(rule: MarkerRule, spo2: Series, limit: Values, relation: str) -> list[Spell]:

@@ -9,6 +9,7 @@ from app.episode.limits import bands_of
 from app.episode.on_screen import EpisodeOnScreen
 from app.episode.panels import Panel
 from core.judgement.policy import shipped_policy
+from core.record.instant import HOUR
 from tests.app.episode.test_stack_words import shown
 from tests.support.invented_ward import failing
 
@@ -53,6 +54,13 @@ def test_a_policy_of_the_ward_moves_the_band():
 def test_a_prescribed_target_stands_before_the_one_its_risk_calls_for():
     (band,) = bands("spo2", on=aimed(90.0, 94.0, True))
     assert (band.low, band.high, band.word) == (90, 94, "SpO2 target 90 to 94 %")
+
+
+def test_a_range_that_became_another_one_says_since_when():
+    on = aimed(88.0, 92.0, False)
+    now = replace(on.figures.now, spo2_target_since=on.figures.as_of - 2 * HOUR)
+    (band,) = bands("spo2", on=replace(on, figures=replace(on.figures, now=now)))
+    assert band.word.startswith("SpO2 88 to 92 %, none prescribed, since ")
 
 
 def test_bands_of_two_units_never_lie_over_each_other():

@@ -116,6 +116,17 @@ def test_what_the_verdict_of_the_start_says_is_not_said_twice(tmp_path: Path) ->
     assert "Since the start" not in bed.response, "it is the verdict"
 
 
+def test_a_range_that_a_gas_changed_is_told_among_the_changes(tmp_path: Path) -> None:
+    _, page = one(
+        tmp_path, "20:50 ph 7.44 paco2 36 pao2 60 gas_fio2 40% site arterial", "20:55 bpap-st 14/6 40",
+        "21:50 ph 7.43 paco2 36 pao2 60 gas_fio2 40% site arterial",
+        "03:20 ph 7.29 paco2 58 pao2 60 gas_fio2 50% site arterial", facts={"indication": "pneumonia"},
+    )  # fmt: skip
+    told = " ".join(page.since)
+    assert "SpO2 range 94-98 % to 88-92 % since 03:20: a gas showed hypercapnia, none is prescribed." in told
+    assert page.standing.startswith("P/F 120 mmHg; acidotic: pH 7.29")
+
+
 def test_oxygen_that_fails_comes_first(content: SheetContent) -> None:
     assert row(content, "Bay A 1").state.startswith("Hypoxaemic: P/F 107 mmHg; not acidotic: pH 7.40")
     page = next(p for p in content.episodes if p.label == "Bay A 1")

@@ -1,7 +1,9 @@
 """What is otherwise than was handed over, on a night made by hand: nothing more, nothing less."""
 
+from dataclasses import replace
+
 from core.figures.episode_figures import episode_figures
-from core.figures.since_handover import SinceHandover, since_handover
+from core.figures.since_handover import SinceHandover, TargetChange, since_handover
 from core.judgement.policy import shipped_policy
 from core.judgement.shapes import EpisodeFigures
 from core.record.entries import Entry, NewEntry, recorded
@@ -108,3 +110,16 @@ def test_a_late_correction_of_what_was_handed_over_shows() -> None:
     assert found.gas_before.at == found.gas_after.at == moment("-23:00")
     assert (found.gas_before.ph, found.gas_after.ph) == (7.29, 7.24)
     assert not found.is_nothing
+
+
+def test_a_range_that_a_gas_changed_is_told_and_a_prescribed_one_is_a_fact():
+    start = "-21:00 ph 7.44 paco2 36 site arterial\n-22:00 mode BPAP-ST ipap 16 epap 5 fio2 0.28\n"
+    before, after = made(start), made(start + "01:00 ph 7.29 paco2 58 site arterial\n")
+    found = since_handover(figures(before, "00:00"), figures(after, "02:00"), HANDED)
+    assert found.target == TargetChange((94, 98), (88, 92), moment("01:00"))
+    assert not replace(found, gas_after=None, verdicts=(), raised=(), gone=(), done=()).is_nothing
+    ordered = made(start, [replace(fact("target_spo2_low", "88", "01:00"), words=None, number=88.0),
+                           replace(fact("target_spo2_high", "92", "01:00"), words=None, number=92.0)])  # fmt: skip
+    told = since_handover(figures(before, "00:00"), figures(ordered, "02:00"), HANDED)
+    assert told.target is None
+    assert {f.channel for f in told.facts} == {"target_spo2_low", "target_spo2_high"}

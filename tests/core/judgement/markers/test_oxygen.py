@@ -228,3 +228,18 @@ def test_a_ward_can_ask_for_a_remark_outside_the_population():
 def test_the_evidence_says_whether_its_limit_itself_counts(marker, readings, said):
     (spell,) = spells(marker, COPD + START + readings)
     assert sentence(spell.evidence[-1], Reader()).startswith(said)
+
+
+def test_evidence_names_the_range_that_was_in_force_then():
+    log = LUNG.replace(" target_spo2_low 94 target_spo2_high 98", "") + START
+    log += "02:00 spo2 92\n02:20 spo2 91\n"
+    (before,) = spells("spo2_below_range", log)
+    assert not any(m.key == "evidence.range_then" for m in before.evidence), "nothing changed"
+    (spell,) = spells("spo2_below_range", log + "03:00 ph 7.30 paco2 58\n03:30 spo2 91")
+    said = next(m for m in spell.evidence if m.key == "evidence.range_then")
+    assert sentence(said, Reader()) == (
+        "The range was 94 to 98 % then; since 27-Mar-2026 03:00 it is 88 to 92 %, by a gas that showed hypercapnia, "
+        "none prescribed."
+    )
+    ordered = spells("spo2_below_range", log + "03:00 target_spo2_low 88 target_spo2_high 92\n03:30 spo2 91")[0]
+    assert ordered.evidence[-1].values["by"] == "prescribed"
