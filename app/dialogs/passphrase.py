@@ -235,6 +235,7 @@ class RecoveryCodeDialog(AskingDialog):
         dialog = QPrintDialog(printer, self)
         if dialog.exec():
             self.page().print_(printer)
+        dialog.deleteLater()
 
     def page(self) -> QTextDocument:
         """What is printed: the store's name, the code, and what it is for."""

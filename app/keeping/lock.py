@@ -131,7 +131,10 @@ class Lock(QObject):
     def _put_away(self, widget: QWidget) -> None:
         if widget in (self._window, self.over) or not widget.isVisible():
             return
-        if isinstance(widget, QDialog):
+        if isinstance(widget, QDialog) and type(widget).__module__.startswith("PySide6"):
+            # Qt's own are waited for by whoever asked: hidden they are over, and the printer they point to is gone
+            QDialog.reject(widget)
+        elif isinstance(widget, QDialog):
             self._dialogs.append((widget, widget.windowModality()))
             widget.finished.connect(self._has_ended)
             widget.hide()

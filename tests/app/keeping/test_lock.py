@@ -4,8 +4,9 @@ import pytest
 from PySide6.QtCore import QEvent, QPoint, QPointF, Qt, QTimer
 from PySide6.QtGui import QGuiApplication, QKeyEvent, QMouseEvent
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication, QFileDialog, QLabel
+from PySide6.QtWidgets import QApplication, QDialog, QFileDialog, QLabel
 
+from app.dialogs.passphrase import RecoveryCodeDialog
 from app.dialogs.people import PeopleDialog
 from app.keeping.lock import IdleWatch
 from app.keeping.lock_page import Way
@@ -112,6 +113,23 @@ def test_what_is_typed_outlives_the_lock_dialogs_too(qtbot, with_people):
         assert dialog.initials.text() == "EF"
         assert window.strip.line.text() == "22/6 3"
         dialog.reject()
+
+
+def test_a_print_dialog_goes_when_the_lock_comes_and_comes_back_no_more(qtbot, on_bed_7):
+    """It pointed to a printer that was gone by then: showing it again ended the program."""
+    window = on_bed_7
+    code = RecoveryCodeDialog("ward.luffmark", "4F7K-92QM-TX3B-HW8D", window.theme, window)
+    code.open()
+    QTimer.singleShot(50, window, window.keeping.lock_now)
+    code.print.click()
+    assert window.keeping.lock.is_locked
+    assert not code.isVisible()
+    qtbot.keyClick(window.keeping.lock.page, Qt.Key.Key_Space)
+    assert code.isVisible()
+    assert not any(d.isVisible() for d in code.findChildren(QDialog))
+    QDialog.reject(code)
+    code.deleteLater()
+    QApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)  # and the threads of the print dialog with it
 
 
 def test_a_dialog_whose_answer_came_while_it_was_hidden_is_over(qtbot, on_bed_7):
