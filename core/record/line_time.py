@@ -120,6 +120,15 @@ def meant_time(word: str) -> str:
     return f"{int(match[1]):02d}:{match[2]}"
 
 
+def meant_ago(word: str) -> str:
+    """The time that a length alone could mean; "" where it is none.
+
+    >>> meant_ago("20m"), meant_ago("1h"), meant_ago("20")
+    ('20m ago', '1h ago', '')
+    """
+    return f"{word} ago" if _AGO.fullmatch(f"{word} ago") else ""
+
+
 def check_no_bare_time(words: Sequence[str], *, digits_only: bool = False) -> None:
     """Refuse `0325 rr 26`, with the line it could mean. `digits_only`: `16.50 6` may be pressures.
 

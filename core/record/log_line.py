@@ -27,12 +27,12 @@ from typing import NoReturn
 from core.record.channels import CHANNELS, Channel, Group, Kind
 from core.record.entries import NewEntry, from_reading
 from core.record.instant import HOUR, Instant, iso
-from core.record.line_time import check_no_bare_time, ends_in_time, moment_typed, read_time, time_behind
+from core.record.line_time import check_no_bare_time, ends_in_time, meant_ago, moment_typed, read_time, time_behind
 from core.record.line_words import CHANNEL_WORDS, names_beginning, parted
 from core.record.message import Message, refuse
 from core.record.reading import Reading, read_value
 from core.record.settings import Settings, settings_after
-from core.record.typed_first import INSTEAD, MODE_WORDS, SAME, named_apart, spaced_pair, two_meanings
+from core.record.typed_first import INSTEAD, MODE_WORDS, named_apart, same_as, spaced_pair, two_meanings
 from core.record.units import MMHG_GAS
 
 EXAMPLE = "16/6 35 | ipap 16 epap 6 fio2 35% | 14:20 rr 28 spo2 91 | gas sent | note ..."
@@ -165,8 +165,10 @@ class _Items:
             self.words[self.i : self.i + count] = [pair]
         elif (apart := named_apart(word, CHANNEL_WORDS)) is not None:
             self.words[self.i : self.i + 1] = apart
-        elif (same := SAME.get(word.casefold())) is not None:
-            self.words[self.i : self.i + 1] = same
+        else:
+            same, count = same_as(self.words[self.i :])
+            if count:
+                self.words[self.i : self.i + count] = same
 
     def _item(self) -> None:
         word = self.words[self.i]
@@ -194,11 +196,14 @@ class _Items:
     def _refuse_word(self, word: str) -> NoReturn:
         if not self.readings:
             check_no_bare_time(self.words[self.i :])
+        elif self.i + 1 == len(self.words):  # mask off 0350
+            check_no_bare_time([word, *self.words[: self.i]], digits_only=True)
+        mode = self._got("mode")
+        if (two := two_meanings(self.words[self.i :], mode.words if mode is not None else None)) is not None:
+            raise refuse("line.two_meanings", word=two[0], accepted=two[1])
         if _NUMBER.fullmatch(word):
             raise refuse("line.number_alone", value=word, accepted=EXAMPLE)
-        if (two := two_meanings(self.words[self.i :])) is not None:
-            raise refuse("line.two_meanings", word=two[0], accepted=two[1])
-        instead, longer = INSTEAD.get(word.casefold()), names_beginning(word)
+        instead, longer = meant_ago(word) or INSTEAD.get(word.casefold()), names_beginning(word)
         if longer and instead is None:  # `mask offf`: the word behind it is the one to mend
             word, instead = " ".join(self.words[self.i : self.i + 2]), " | ".join(longer)
         raise refuse("line.word_unknown", word=word, accepted=instead or EXAMPLE)

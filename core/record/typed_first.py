@@ -11,8 +11,12 @@ MODE_WORDS: Mapping[str, str] = {
     "st": "BPAP-ST", "hfn": "high-flow nasal", "hfnc": "high-flow nasal", "hfno": "high-flow nasal",
 } | {m.casefold(): m for m in MODES}  # fmt: skip
 """A mode by the words that name it."""
-SAME: Mapping[str, tuple[str, ...]] = {"vomited": ("vomiting",)}
-"""Words that mean what another word means, and nothing else."""
+_SAME: Mapping[str, tuple[str, ...]] = {
+    "vomited": ("vomiting",), "pressure support": ("ps",), "high flow": ("high-flow", "nasal"),
+    "high-flow": ("high-flow", "nasal"), "high flow nasal": ("high-flow", "nasal"),
+    "high-flow nasal": ("high-flow", "nasal"),
+}  # fmt: skip
+"""Words that mean what others mean, and nothing else."""
 INSTEAD: Mapping[str, str] = {
     "gas": "ph 7.24 paco2 62 pao2 58, or the form of a blood gas (F11)",
     "abg": "ph 7.24 paco2 62 pao2 58, or the form of a blood gas (F11)",
@@ -29,8 +33,22 @@ _SIDE = r"\d+(?:[.,]\d+)?"
 _LEFT, _RIGHT = re.compile(rf"{_SIDE}/?"), re.compile(rf"/?{_SIDE}")
 
 
-def two_meanings(words: Sequence[str]) -> tuple[str, str] | None:
-    """The words that could mean two things, and how to say each; None where the first could not.
+def same_as(words: Sequence[str]) -> tuple[tuple[str, ...], int]:
+    """What the first words mean in the grammar's own words, and how many they are; ((), 0) where they are its own.
+
+    >>> same_as(["high", "flow", "60"]), same_as(["pressure", "support", "10"]), same_as(["rr", "20"])
+    ((('high-flow', 'nasal'), 2), (('ps',), 2), ((), 0))
+    """
+    for count in (3, 2, 1):
+        same = _SAME.get(" ".join(words[:count]).casefold())
+        if same is not None:
+            return same, min(count, len(words))
+    return (), 0
+
+
+def two_meanings(words: Sequence[str], mode: str | None = None) -> tuple[str, str] | None:
+    """The words that could mean two things, and how to say each; None where the first could not. `mode`: the one
+    named before them.
 
     >>> two_meanings(["rate", "16"])
     ('rate 16', 'br 16 (backup rate) | rr 16 (respiratory rate) | hr 16 (heart rate)')
@@ -41,9 +59,11 @@ def two_meanings(words: Sequence[str]) -> tuple[str, str] | None:
         shown = number or "16"
         ways = [f"{short} {shown} ({CHANNELS[key].name.lower()})" for short, key in _RATES if _can_be(key, number)]
         return f"{words[0]} {number}".strip(), " | ".join(ways)
-    if word in _AIR or (word == "room" and len(words) > 1 and words[1].casefold() == "air"):
-        said = " ".join(words[:2]) if word == "room" else words[0]
+    if word in _AIR or (word in ("room", "on") and len(words) > 1 and words[1].casefold() in _AIR):
+        said = words[0] if word in _AIR else " ".join(words[:2])
         return said, "fio2 21 (support with air) | mask off (air without support)"
+    if mode == "high-flow nasal" and _NUMBER.fullmatch(words[0]):
+        return words[0], f"flow {words[0]} (L/min) | fio2 {words[0]}%"
     return None
 
 

@@ -68,7 +68,9 @@ def values(text, in_force=BILEVEL):
         ("18 / 6", {"ipap": 18.0, "epap": 6.0}), ("18/ 6 40", {"ipap": 18.0, "epap": 6.0, "fio2": 0.4}),
         ("bp 118 / 64", {"sbp": 118.0, "dbp": 64.0}), ("16 /6 35", {"ipap": 16.0, "epap": 6.0, "fio2": 0.35}),
         ("hfnc fio2 60%", {"mode": "high-flow nasal", "fio2": 0.6}), ("hfnc", {"mode": "high-flow nasal"}),
-        ("high-flow nasal", {"mode": "high-flow nasal"}), ("pressure control 18/6", {
+        ("high-flow nasal", {"mode": "high-flow nasal"}), ("high flow", {"mode": "high-flow nasal"}),
+        ("High flow nasal o2_flow 50", {"mode": "high-flow nasal", "o2_flow": 50.0}),
+        ("pressure support 12", {"ipap": 17.0}), ("pressure control 18/6", {
             "mode": "pressure control", "ipap": 18.0, "epap": 6.0}), ("vomited", {"vomiting": None}),
     ],
 )  # fmt: skip
@@ -197,6 +199,8 @@ def test_a_fact_that_is_a_time_takes_it_as_the_line_does(text, at, started):
         ("16/6 rate 16", "line.two_meanings", ["br 16", "rr 16"]),
         ("air", "line.two_meanings", ["fio2 21", "mask off"]),
         ("room air", "line.two_meanings", ["fio2 21", "mask off"]),
+        ("on air", "line.two_meanings", ["fio2 21", "mask off"]),
+        ("mask off 0150", "line.time_form", ["01:50 mask off"]),
         ("0325 rr 26", "line.time_form", ["03:25 rr 26"]),
         ("0230 20/5", "line.time_form", ["02:30 20/5"]),
         ("0230 20 5", "line.time_form", ["02:30 20 5"]),
@@ -204,7 +208,10 @@ def test_a_fact_that_is_a_time_takes_it_as_the_line_does(text, at, started):
         ("2575 rr 26", "line.time_form", ["14:20"]),
         ("support started half one", "line.time_form", ["14:20"]),
         ("01:40 mask off 20m ago", "line.time_twice", ["one time"]),
-        ("hfnc 60", "line.number_alone", ["16/6 35"]),
+        ("hfnc 60", "line.two_meanings", ["flow 60", "fio2 60%"]),
+        ("bpap-st 60", "line.number_alone", ["16/6 35"]),
+        ("mask off 20m", "line.word_unknown", ["20m ago"]),
+        ("started 01:20", "line.word_unknown", ["support started 01:20"]),
     ],
 )
 def test_what_could_mean_two_things_is_refused_with_each(text, key, named):
