@@ -194,9 +194,10 @@ class IntakeDialog(AskingDialog):
             told.format(name=self._path.name, brought=self._brought(*brought), episodes=self._of(intake.episodes))
         ]
         if intake.new_episodes:
-            begins = _counted(len(intake.new_episodes), self.tr("A new episode begins: {keys}."),
-                              self.tr("{count} new episodes begin: {keys}."))  # fmt: skip
-            parts.append(begins.format(keys=some_of(intake.new_episodes)))
+            one, many = self.tr("A new episode begins: {keys}."), self.tr("{count} new episodes begin: {keys}.")
+            count = len(intake.new_episodes)
+            begins = one if count == 1 else many
+            parts.append(begins.format(count=f"{count:,}", keys=some_of(intake.new_episodes)))
         counts = (
             (intake.empty_count, self.tr("1 device sample is empty: a gap."),
              self.tr("{count} device samples are empty: gaps.")),

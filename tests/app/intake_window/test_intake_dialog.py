@@ -178,6 +178,15 @@ def test_what_was_taken_in_is_told_on_the_strip(qtbot, window, tmp_path):
     assert window.strip.plain() == told
 
 
+def test_several_episodes_that_would_begin_are_named(qtbot, window, tmp_path):
+    path = tmp_path / "night.csv"
+    path.write_text(HEAD + GOOD + GOOD.replace("bed-9", "bed-10"))
+    dialog = shown(qtbot, window, path)
+    assert "2 new episodes begin: bed-9, bed-10." in dialog.summary.text()
+    taken(qtbot, window, dialog)
+    assert "2 entries for 2 episodes" in window.strip.plain()
+
+
 # other windows and leaving
 
 
