@@ -111,11 +111,16 @@ class EpisodeWriter(SheetWriter):
         )
         return tr("{text}; off {spans}").format(text=text, spans=spans)
 
-    @staticmethod
-    def _target(s: ShiftFigures) -> str:
+    def _target(self, s: ShiftFigures) -> str:
         low, high = (s.now.profile.get(f"target_spo2_{end}") for end in ("low", "high"))
         text = f"{formats.trimmed(s.target[0])} to {formats.trimmed(s.target[1])} %"
-        return text if low is not None and high is not None else tr("not recorded; {text} by risk").format(text=text)
+        if low is not None and high is not None:
+            return text
+        now = s.now.now
+        if now.spo2_target_since is None or not now.spo2_target_by_gas:
+            return tr("not recorded; {text} by risk").format(text=text)
+        told = tr("not recorded; {text} by risk, which the gas of {at} showed")
+        return told.format(text=text, at=self._moment(now.spo2_target_since))
 
     def _changes(self, s: ShiftFigures) -> Iterator[ChangeLine]:
         """Every change of the shift in order of time; what was set with an anchor stands in its line."""

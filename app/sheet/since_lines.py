@@ -14,7 +14,7 @@ from app.telling.phrases import channel_name
 from app.telling.undone import undone_word
 from app.words import Reader
 from app.words.figure_lines import FigureLines
-from core.figures.since_handover import FactChange, SinceHandover, TargetChange, Verdict
+from core.figures.since_handover import FactChange, SinceHandover, Verdict
 from core.judgement.shapes import DueFigure, FlagFigure
 
 _SUPPORT: Final = {
@@ -52,7 +52,8 @@ def since_head(handed: Handed, reader: Reader) -> str:
 def since_lines(since: SinceHandover, lines: FigureLines, *, short: bool = False) -> tuple[str, ...]:
     """A sentence for each thing that is otherwise; `short` counts the flags."""
     if not since.was_there:
-        return (tr("Not on the ward then; all of it is new."),)
+        told = _SinceWriter(since, lines, short).target() if since.target is not None else ""
+        return (tr("Not on the ward then; all of it is new."), *((told,) if told else ()))
     if since.is_nothing:
         return (tr("Nothing is otherwise."),)
     return tuple(_SinceWriter(since, lines, short).all())
@@ -73,7 +74,7 @@ class _SinceWriter:
         if s.gas_after is not None:
             yield tr("State: {state}.").format(state=self._state())
         if s.target is not None:
-            yield self._target(s.target)
+            yield self.target()
         if s.verdicts:
             yield tr("Verdicts: {those}.").format(those="; ".join(self._verdict(v) for v in s.verdicts))
         if self._short and (s.raised or s.gone):
@@ -132,8 +133,10 @@ class _SinceWriter:
         for name, found in times.items():
             yield f"{name} {', '.join(self._reader.time(at) for at in sorted(set(found)))}"
 
-    def _target(self, change: TargetChange) -> str:
+    def target(self) -> str:
         """A range that nobody prescribed: the next shift must not take it for somebody's decision."""
+        change = self._s.target
+        assert change is not None
         told = tr("SpO2 range {old} to {new} since {at}: a gas showed hypercapnia, none is prescribed.")
         old, new = (tr("{low}-{high} %").format(low=formats.trimmed(low), high=formats.trimmed(high))
                     for low, high in (change.before, change.after))  # fmt: skip

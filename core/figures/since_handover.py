@@ -83,7 +83,7 @@ class SinceHandover:
 def since_handover(then: EpisodeFigures | None, now: EpisodeFigures, since: Instant) -> SinceHandover:
     """Compare the figures that were handed over at `since` (None: the episode was not known then) with those now."""
     if then is None:
-        return SinceHandover(since, False)
+        return SinceHandover(since, False, target=_target(None, now))
     before, after = _newest(then.gases), _newest(now.gases)
     other = after is not None and not _same_gas(before, after)
     return SinceHandover(
@@ -161,17 +161,22 @@ def _gone(then: Iterable[FlagFigure], now: tuple[FlagFigure, ...]) -> Iterable[F
                   default=flag)  # fmt: skip
 
 
-def _target(then: EpisodeFigures, now: EpisodeFigures) -> TargetChange | None:
-    """The range that a gas changed; None where a person prescribed the one in force."""
-    old, new = then.now, now.now
-    if new.spo2_target_since is None or not new.spo2_target_by_gas:
+def _target(then: EpisodeFigures | None, now: EpisodeFigures) -> TargetChange | None:
+    """The range that a gas changed since; None where a person prescribed the one in force. Of an episode that was not
+    known then, a change after its support had begun: before that nobody kept the range."""
+    new = now.now
+    after, since = _range(now), new.spo2_target_since
+    before = _range(then) if then is not None else new.spo2_target_before
+    if since is None or not new.spo2_target_by_gas or before is None or after is None or before == after:
         return None
-    if old.spo2_target_low is None or old.spo2_target_high is None:
+    if then is None and (now.support.since is None or since <= now.support.since):
         return None
-    if new.spo2_target_low is None or new.spo2_target_high is None:
-        return None
-    before, after = (old.spo2_target_low, old.spo2_target_high), (new.spo2_target_low, new.spo2_target_high)
-    return TargetChange(before, after, new.spo2_target_since) if before != after else None
+    return TargetChange(before, after, since)
+
+
+def _range(f: EpisodeFigures) -> tuple[float, float] | None:
+    low, high = f.now.spo2_target_low, f.now.spo2_target_high
+    return None if low is None or high is None else (low, high)
 
 
 def _facts(then: EpisodeFigures, now: EpisodeFigures) -> Iterable[FactChange]:

@@ -41,6 +41,7 @@ def now_figure(seen: Observed) -> NowFigure:
         spo2_target_high=ctx.target.high,
         spo2_target_prescribed=ctx.target.prescribed,
         spo2_target_since=change.at if change is not None else None,
+        spo2_target_before=change.before if change is not None else None,
         spo2_target_by_gas=change is not None and change.by_gas,
     )
 

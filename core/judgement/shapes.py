@@ -331,6 +331,8 @@ class NowFigure:
     spo2_target_prescribed: bool = False
     spo2_target_since: Instant | None = None
     """When the range became another one since the record began; None where it has always been what it is."""
+    spo2_target_before: tuple[float, float] | None = None
+    """The range before that; None where it has always been what it is."""
     spo2_target_by_gas: bool = False
     """Nobody prescribed that change: a gas showed hypercapnic risk."""
 

@@ -124,6 +124,8 @@ def test_a_range_that_a_gas_changed_is_told_among_the_changes(tmp_path: Path) ->
     )  # fmt: skip
     told = " ".join(page.since)
     assert "SpO2 range 94-98 % to 88-92 % since 03:20: a gas showed hypercapnia, none is prescribed." in told
+    target = dict(page.facts)["SpO2 target"]
+    assert target == "not recorded; 88 to 92 % by risk, which the gas of 03:20 showed"
     assert page.standing.startswith("P/F 120 mmHg; acidotic: pH 7.29")
 
 

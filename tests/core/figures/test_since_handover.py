@@ -118,6 +118,10 @@ def test_a_range_that_a_gas_changed_is_told_and_a_prescribed_one_is_a_fact():
     found = since_handover(figures(before, "00:00"), figures(after, "02:00"), HANDED)
     assert found.target == TargetChange((94, 98), (88, 92), moment("01:00"))
     assert not replace(found, gas_after=None, verdicts=(), raised=(), gone=(), done=()).is_nothing
+    new = since_handover(None, figures(after, "02:00"), HANDED)
+    assert (new.was_there, new.target) == (False, TargetChange((94, 98), (88, 92), moment("01:00")))
+    at_the_start = made(start.replace("ph 7.44 paco2 36", "ph 7.29 paco2 58"))
+    assert since_handover(None, figures(at_the_start, "02:00"), HANDED).target is None, "nobody kept another before"
     ordered = made(start, [replace(fact("target_spo2_low", "88", "01:00"), words=None, number=88.0),
                            replace(fact("target_spo2_high", "92", "01:00"), words=None, number=92.0)])  # fmt: skip
     told = since_handover(figures(before, "00:00"), figures(ordered, "02:00"), HANDED)
