@@ -35,7 +35,7 @@ def test_device_values_are_a_line_and_hand_values_spots():
 
 
 def test_a_typed_reading_that_no_figure_takes_looks_so_and_says_why():
-    """Typed with the mask off, or a volume whose leak is not known: the line over the charts says what figures say."""
+    """With the mask off, or a volume whose leak is not known: the line over the charts says what figures say."""
     log = "00:30 rr 20\n01:00 mode BPAP-ST ipap 20 epap 5\n01:30 vte 500\n02:10 mask_off\n02:16 vte 420 leak 22"
     record = episode(log)
     f = episode_figures(record, moment("03:00"), shipped_policy())
