@@ -3,7 +3,7 @@
 from typing import Final
 
 MARKERS: Final[dict[str, str]] = {
-    "marker.acidosis_off_support": "acidosis off, or just back on, support",
+    "marker.acidosis_off_support": "acidosis off or just back on",
     "marker.agitation": "agitation",
     "marker.apnoea": "apnoea",
     "marker.arrest": "arrest",
