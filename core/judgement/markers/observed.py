@@ -331,9 +331,22 @@ class Observed:
         return risk if self.risk_since is None else risk | (times >= self.risk_since)
 
     def oxygen_given(self, times: Times) -> Flags:
-        """Whether oxygen was given at each time: FiO2 above room air, or a flow; False where nothing is known."""
+        """Whether oxygen was given at each time: FiO2 above room air, or a flow; False where nothing is known.
+
+        Off the mask what was set on the device is not given: there only what was logged since counts.
+        """
         fio2, flow = self.settings.fio2.on(times), self.settings.o2_flow.on(times)
-        return np.asarray(np.where(np.isnan(fio2), flow > 0, fio2 > ROOM_AIR + 1e-9), np.bool_)
+        given = np.asarray(np.where(np.isnan(fio2), flow > 0, fio2 > ROOM_AIR + 1e-9), np.bool_)
+        logged = self.settings.fio2.t
+        if not logged.size:
+            return given
+        last = logged[np.maximum(np.searchsorted(logged, times, side="right") - 1, 0)]
+        offs = [(b.start, b.end) for b in self.support.breaks]
+        offs += [(self.support.end, None)] if self.support.end is not None else []
+        for start, end in offs:
+            off = times >= start if end is None else (times >= start) & (times < end)
+            given &= ~(off & (last < start))
+        return given
 
     def on_highest_oxygen(self, gas: GasFigure, fio2: float, flow: float) -> bool | None:
         """Whether a gas was drawn on at least so much oxygen; None where that is not known."""

@@ -1,10 +1,12 @@
 """What markers look at: a value that was typed twice is one reading."""
 
+import numpy as np
 import pytest
 
 from core.judgement.markers.observed import Observed, one_a_minute
 from tests.support.flag_cases import COPD, LUNG, START, ctx, met
 from tests.support.log import device, episode
+from tests.support.log_cases import at
 
 
 def test_of_one_minute_the_last_value_that_people_logged_is_the_reading():
@@ -29,7 +31,24 @@ def test_values_of_a_machine_stay():
     ],
 )
 def test_a_value_typed_twice_for_one_minute_raises_nothing_that_asks_for_two(marker, log, second):
-    at, minutes = log.rsplit("\n", 1)[1][:5], ("02:00", "02:20") if "02:00" in log else ("04:00", "04:20")
-    assert at == minutes[0]
+    first, minutes = log.rsplit("\n", 1)[1][:5], ("02:00", "02:20") if "02:00" in log else ("04:00", "04:20")
+    assert first == minutes[0]
     assert met(marker, f"{log}\n{minutes[0]} {second}") == ""
     assert met(marker, f"{log}\n{minutes[1]} {second}") == f"{minutes[1]}-"
+
+
+BREAK = COPD + START + "02:00 mask_off\n02:10 spo2 97\n02:20 spo2 97\n02:30 spo2 97\n"
+
+
+def test_off_the_mask_what_was_set_on_the_device_is_no_oxygen_given():
+    times = np.array([at("01:30"), at("02:00"), at("02:10"), at("02:50"), at("03:10")], np.int64)
+    seen = Observed(ctx(BREAK + "02:40 o2_flow 2\n03:00 mask_on\n", "04:00"))
+    assert seen.oxygen_given(times).tolist() == [True, False, False, True, True]
+    ended = Observed(ctx(BREAK.replace("mask_off", "stopped"), "04:00"))
+    assert ended.oxygen_given(times).tolist() == [True, False, False, False, False]
+
+
+def test_nobody_is_given_too_much_oxygen_by_a_mask_that_is_off():
+    assert met("over_oxygenation", BREAK, "03:00") == ""
+    assert met("over_oxygenation", BREAK + "02:05 o2_flow 2\n", "03:00") == "02:20-"
+    assert met("over_oxygenation", BREAK.replace("02:00 mask_off\n", ""), "03:00") == "02:20-"
