@@ -7,6 +7,9 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QObject
 
 if TYPE_CHECKING:
+    from app.dialogs.close_due import CloseDueDialog
+    from app.dialogs.settle_flag import SettleDialog
+    from app.session.failure import Failure
     from app.session.model import SessionModel
     from app.window.pages import Pages
     from app.window.shell import Shell
@@ -25,6 +28,13 @@ class Doer(QObject):
         if self.window.model is None:
             raise RuntimeError("no store is open: this action is greyed then")
         return self.window.model
+
+    def refused(self, asking: CloseDueDialog | SettleDialog | None, failure: Failure) -> None:
+        """Said where it was asked, and in the window where that was left before the answer came."""
+        if asking is not None:
+            asking.failed(failure)
+        if asking is None or not asking.isVisible():
+            self.window.show_failure(failure)
 
     def label_of(self, episode: str) -> str:
         """What an episode is called where lines are logged, whoever is in hand by now; its key where nobody knows."""

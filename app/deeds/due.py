@@ -53,11 +53,7 @@ class DueDeeds(Doer):
         self.model.ask(due.close, request, done=self._closed, failed=self._not_closed)
 
     def _not_closed(self, failure: Failure) -> None:
-        """Said where it was asked, and in the window where that was left before the answer came."""
-        if self.asking is not None:
-            self.asking.failed(failure)
-        if self.asking is None or not self.asking.isVisible():
-            self.window.show_failure(failure)
+        self.refused(self.asking, failure)
 
     def _closed(self, outcome: Outcome[Recorded]) -> None:
         if self.asking is not None and not self.asking.is_filled_in:

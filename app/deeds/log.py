@@ -94,10 +94,7 @@ class LogDeeds(FormDeeds):
         self.model.ask(flag_operations.settle, request, done=self._flag_settled, failed=self._not_settled)
 
     def _not_settled(self, failure: Failure) -> None:
-        """Said where it was asked, and in the window where that was left before the answer came."""
-        self._settling.failed(failure)
-        if not self._settling.isVisible():
-            self.window.show_failure(failure)
+        self.refused(self._settling, failure)
 
     def _flag_settled(self, outcome: Outcome[Recorded]) -> None:
         if not self._settling.is_filled_in:

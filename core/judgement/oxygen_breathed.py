@@ -13,7 +13,7 @@ import numpy as np
 from core.judgement.scores_news2 import breathes_oxygen
 from core.record.instant import MINUTE, Instant
 from core.record.samples import Times, Values
-from core.record.settings import SettingsInForce
+from core.record.settings import ROOM_AIR, SettingsInForce
 from core.record.support import SupportTime
 
 
@@ -53,5 +53,17 @@ def off_mask_since(support: SupportTime, at: Instant) -> Instant | None:
 
 def oxygen_course(settings: SettingsInForce, support: SupportTime, times: Times) -> Values:
     """The same at each of `times`, shape (n,): 1 on oxygen, 0 on air, NaN where it is not known."""
-    found = (oxygen_breathed(settings, support, at).given for at in times.tolist())
-    return np.array([np.nan if given is None else float(given) for given in found], np.float64)
+    logged = settings.fio2.t
+    if not logged.size:
+        return np.full(times.shape, np.nan)
+    fio2, flow = settings.fio2.on(times), settings.o2_flow.on(times)
+    by_fraction = np.where(np.isnan(fio2), np.where(flow == 0, 0.0, np.nan), fio2 > ROOM_AIR + 1e-9)
+    given = np.where(flow > 0, 1.0, by_fraction)
+    i = np.searchsorted(logged, times, side="right") - 1
+    then, minute = logged[np.maximum(i, 0)], times // MINUTE
+    given[i < 0] = np.nan
+    ended = [(support.end, None)] if support.end is not None else []
+    for start, end in [*((b.start, b.end) for b in support.breaks), *ended]:
+        off = (minute > start // MINUTE) & (True if end is None else minute <= end // MINUTE)
+        given[off & (then < start)] = np.nan
+    return given

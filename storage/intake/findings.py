@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sized
+from collections.abc import Iterable, Mapping, Sized
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -108,8 +108,12 @@ class Intake:
     @property
     def episodes(self) -> tuple[str, ...]:
         """The episodes it bears on, in order of appearance."""
-        keys = [d.entry.episode for d in self.entries] + [episode for episode, _channel in self.spans]
-        return tuple(dict.fromkeys(keys))
+        return episodes_of(self.entries, self.spans)
+
+
+def episodes_of(entries: Iterable[DraftEntry], spans: Iterable[tuple[str, str]]) -> tuple[str, ...]:
+    """The episodes of entries and of samples' (episode, channel), in order of appearance."""
+    return tuple(dict.fromkeys([*(d.entry.episode for d in entries), *(episode for episode, _channel in spans)]))
 
 
 def _joined(chunks: list[DraftChunk]) -> DeviceSamples:

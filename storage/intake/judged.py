@@ -8,9 +8,9 @@ from core.record.instant import DAY
 from core.record.labels import alike
 from core.record.message import Message
 from storage.chunks import Block
-from storage.draft_batch import DraftEntry, SourceFacts
+from storage.draft_batch import SourceFacts
 from storage.intake.entry_rows import EntryRows
-from storage.intake.findings import Findings, Intake, Refusal
+from storage.intake.findings import Findings, Intake, Refusal, episodes_of
 from storage.intake.fresh_chunks import FreshChunks
 from storage.intake.held_samples import Compared, HeldSamples
 from storage.intake.named_episodes import open_labels
@@ -46,7 +46,8 @@ def judged_intake(
         message = Message("row.repeated", {"first_line": again.first_line, "accepted": "each row once"})
         findings.refuse(again.line, "", f"{again.episode} {again.channel}", message)
     findings.refused_rows += spool.repeated_count - len(spool.repeated)
-    new = new_episodes(entries, chunks, existing)
+    of = episodes_of(entries, chunks.spans)
+    new = tuple(k for k in of if existing is None or not existing.has_episode(k))
     _doubt_names(new, rows, existing, findings)
     return Intake(
         source, entries, chunks if len(chunks) else (),
@@ -55,12 +56,6 @@ def judged_intake(
         tuple(sorted(findings.doubts, key=lambda d: d.line)), whole,
         tuple(aside), max(aside_count, len(aside)), new_episodes=new,
     )  # fmt: skip
-
-
-def new_episodes(entries: Iterable[DraftEntry], chunks: FreshChunks, existing: Store | None) -> tuple[str, ...]:
-    """The episodes that would begin: those of which the store has nothing, in order of appearance."""
-    keys = dict.fromkeys([d.entry.episode for d in entries] + [episode for episode, _channel in chunks.spans])
-    return tuple(k for k in keys if existing is None or not existing.has_episode(k))
 
 
 def _doubt_names(new: Sequence[str], rows: Iterable[EntryRow], existing: Store | None, findings: Findings) -> None:

@@ -8,13 +8,10 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from core.record.episode import build_episode
 from core.record.instant import Instant
-from core.record.knowledge import standing
 from core.record.labels import alike
 from core.record.message import RecordError, refuse
-from core.record.settings import SettingsInForce
-from core.record.support import support_time
+from storage.intake.shared_labels import end_of_support, labels_of_open
 from storage.store import Store
 
 _MOST_KEY = 200
@@ -24,18 +21,9 @@ _MOST_NAMED = 3
 def open_labels(existing: Store | None) -> dict[str, list[str]]:
     """The keys of the episodes that go on, by each label they bear or bore, as people compare labels."""
     found: dict[str, list[str]] = {}
-    if existing is None:
-        return found
-    still_open = set(existing.open_episode_keys())
-    for key, label in existing.texts_of("label"):
-        if key in still_open and key not in found.setdefault(alike(label), []):
-            found[alike(label)].append(key)
+    for key, label in dict.fromkeys(labels_of_open(existing)):
+        found.setdefault(label, []).append(key)
     return found
-
-
-def _end_of(existing: Store, key: str) -> Instant | None:
-    record = build_episode(key, standing(existing.entries(key)))
-    return support_time(record, SettingsInForce(record)).end
 
 
 class NamedEpisodes:
@@ -76,7 +64,7 @@ class NamedEpisodes:
             self._open = set(self._existing.open_episode_keys())
         if key not in self._ended:
             over = key not in self._open and self._existing.has_episode(key)
-            self._ended[key] = _end_of(self._existing, key) if over else None
+            self._ended[key] = end_of_support(self._existing.entries(key), key) if over else None
         return self._ended[key]
 
     def _find(self, name: str) -> str:

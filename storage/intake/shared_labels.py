@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from typing import TYPE_CHECKING
 
 from core.record.entries import Action, Entry, NewEntry
 from core.record.episode import build_episode
+from core.record.instant import Instant
 from core.record.knowledge import standing
 from core.record.labels import alike
 from core.record.message import Message
@@ -36,7 +37,7 @@ def shared_labels(
             bears.setdefault(label, []).append(key)
     shared = {label for label, count in Counter(label_of.values()).items() if count > 1} | bears.keys()
     for key, i in sorted(rows.items(), key=lambda item: item[1]):
-        if label_of[key] in shared and _is_open(combined(key), key):
+        if label_of[key] in shared and end_of_support(combined(key), key) is None:
             others = bears.setdefault(label_of[key], [])
             for other in others:
                 yield i, Message("row.label_shared", {"label": entries[i].words, "episode": other})
@@ -45,12 +46,18 @@ def shared_labels(
 
 def _held(existing: Store | None) -> dict[str, str]:
     """The labels of the store's open episodes, as people compare them."""
+    return dict(labels_of_open(existing))
+
+
+def labels_of_open(existing: Store | None) -> Iterator[tuple[str, str]]:
+    """Each label that an open episode of the store bears or bore, as people compare them: (key, label), in order."""
     if existing is None:
-        return {}
+        return
     still_open = set(existing.open_episode_keys())
-    return {key: alike(words) for key, words in existing.texts_of("label") if key in still_open}
+    yield from ((key, alike(words)) for key, words in existing.texts_of("label") if key in still_open)
 
 
-def _is_open(entries: list[Entry], key: str) -> bool:
+def end_of_support(entries: Iterable[Entry], key: str) -> Instant | None:
+    """When the support of an episode ended, by its entries; None where it goes on."""
     record = build_episode(key, standing(entries))
-    return support_time(record, SettingsInForce(record)).end is None
+    return support_time(record, SettingsInForce(record)).end

@@ -6,28 +6,28 @@ from bisect import bisect_right
 from collections.abc import Callable, Hashable
 from dataclasses import dataclass
 from math import isnan
-from typing import Any, Final, Generic, TypeVar
+from typing import Any, Generic, TypeVar
 
 import numpy as np
 
 from core.judgement.context import Context
 from core.judgement.gas_findings import STANDS_FOR_ARTERIAL
+from core.judgement.oxygen_breathed import oxygen_course
 from core.judgement.policy import Policy
 from core.judgement.probable_breaks import in_any, probable_breaks
 from core.judgement.response_shapes import JudgedGas, ResponseFigure, SinceStart
 from core.judgement.shapes import GasFigure
+from core.judgement.stretches import FOREVER
 from core.judgement.vitals_near import Found, VitalsNear
 from core.judgement.watched_context import stands_with, watched
 from core.record.channels import HYPERCAPNIC_RISK
 from core.record.episode import Episode, Series
 from core.record.instant import MINUTE, Instant
 from core.record.samples import Flags, Times, Values
-from core.record.settings import ROOM_AIR, SettingsInForce, Steps
+from core.record.settings import SettingsInForce, Steps
 from core.record.support import Break, SupportTime
 
 Finding = TypeVar("Finding")
-_NO_BOUND: Final = 2**62
-"""Later than any moment: the record itself holds nothing later than `as_of`."""
 
 
 def one_a_minute(series: Series) -> Flags:
@@ -246,8 +246,8 @@ class Observed:
         return None
 
     def rate_near(self, at: Instant) -> Found | None:
-        """The respiratory rate nearest to a moment, before or after it."""
-        return self.vitals.rate(at, 0, _NO_BOUND)
+        """The respiratory rate nearest to a moment, before or after it (none is later than `as_of`)."""
+        return self.vitals.rate(at, 0, FOREVER)
 
     def series(self, channel: str) -> Series:
         """The known values of a channel; of those that people logged for one minute the last."""
@@ -331,22 +331,8 @@ class Observed:
         return risk if self.risk_since is None else risk | (times >= self.risk_since)
 
     def oxygen_given(self, times: Times) -> Flags:
-        """Whether oxygen was given at each time: FiO2 above room air, or a flow; False where nothing is known.
-
-        Off the mask what was set on the device is not given: there only what was logged since counts.
-        """
-        fio2, flow = self.settings.fio2.on(times), self.settings.o2_flow.on(times)
-        given = np.asarray(np.where(np.isnan(fio2), flow > 0, fio2 > ROOM_AIR + 1e-9), np.bool_)
-        logged = self.settings.fio2.t
-        if not logged.size:
-            return given
-        last = logged[np.maximum(np.searchsorted(logged, times, side="right") - 1, 0)]
-        offs = [(b.start, b.end) for b in self.support.breaks]
-        offs += [(self.support.end, None)] if self.support.end is not None else []
-        for start, end in offs:
-            off = times >= start if end is None else (times >= start) & (times < end)
-            given &= ~(off & (last < start))
-        return given
+        """Whether oxygen was given at each time, shape (n,); False where it is not known."""
+        return np.asarray(oxygen_course(self.settings, self.support, times) == 1.0)
 
     def on_highest_oxygen(self, gas: GasFigure, fio2: float, flow: float) -> bool | None:
         """Whether a gas was drawn on at least so much oxygen; None where that is not known."""

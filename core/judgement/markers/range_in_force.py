@@ -3,15 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Final
 
 import numpy as np
 
 from core.judgement.markers.observed import Observed
+from core.judgement.stretches import FOREVER
 from core.record.instant import Instant
 from core.record.message import Message
-
-_LAST: Final = 2**62
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,7 +40,7 @@ def newest_change(seen: Observed) -> RangeChange | None:
 def changed_since(seen: Observed, at: Instant) -> tuple[Message, ...]:
     """What a value of a moment has to say of its range, where another one is in force by now."""
     change = seen.once(newest_change)
-    then, now = _at(seen, at), _at(seen, _LAST)
+    then, now = _at(seen, at), _at(seen, FOREVER)
     if change is None or then == now or at >= change.at:
         return ()
     told = {"low": then[0], "high": then[1], "since": change.at, "low_now": now[0], "high_now": now[1]}

@@ -3,10 +3,16 @@
 import numpy as np
 import pytest
 
+from core.figures.episode_figures import judged
 from core.judgement.markers.observed import Observed, one_a_minute
+from core.judgement.oxygen_breathed import oxygen_breathed, oxygen_course
+from core.record.episode import build_episode
+from core.record.instant import MINUTE, SECOND
+from core.record.knowledge import standing
 from tests.support.flag_cases import COPD, LUNG, START, ctx, met
 from tests.support.log import device, episode
 from tests.support.log_cases import at
+from tests.support.random_rows import POLICY, ZERO, entries_of, thrown
 
 
 def test_of_one_minute_the_last_value_that_people_logged_is_the_reading():
@@ -43,9 +49,20 @@ BREAK = COPD + START + "02:00 mask_off\n02:10 spo2 97\n02:20 spo2 97\n02:30 spo2
 def test_off_the_mask_what_was_set_on_the_device_is_no_oxygen_given():
     times = np.array([at("01:30"), at("02:00"), at("02:10"), at("02:50"), at("03:10")], np.int64)
     seen = Observed(ctx(BREAK + "02:40 o2_flow 2\n03:00 mask_on\n", "04:00"))
-    assert seen.oxygen_given(times).tolist() == [True, False, False, True, True]
+    assert seen.oxygen_given(times).tolist() == [True, True, False, True, True]  # a minute belongs before its change
     ended = Observed(ctx(BREAK.replace("mask_off", "stopped"), "04:00"))
-    assert ended.oxygen_given(times).tolist() == [True, False, False, False, False]
+    assert ended.oxygen_given(times).tolist() == [True, True, False, False, False]
+
+
+@pytest.mark.parametrize("seed", range(60))
+def test_the_course_of_oxygen_is_what_is_breathed_at_every_moment(seed):
+    rows, _ = thrown(seed)
+    last = max(m for m, _, _ in rows)
+    seen = Observed(judged(build_episode("E", standing(entries_of(rows))), ZERO + last * MINUTE, POLICY))
+    times = np.arange(-30, last + 1, dtype=np.int64) * MINUTE + ZERO + 17 * SECOND
+    one_by_one = [oxygen_breathed(seen.settings, seen.support, int(t)).given for t in times]
+    expected = [np.nan if given is None else float(given) for given in one_by_one]
+    np.testing.assert_array_equal(oxygen_course(seen.settings, seen.support, times), expected)
 
 
 def test_nobody_is_given_too_much_oxygen_by_a_mask_that_is_off():
